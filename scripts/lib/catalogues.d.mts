@@ -1,0 +1,1 @@
+export function compileCatalogues(): Promise<void>;

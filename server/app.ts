@@ -1,0 +1,135 @@
+import { randomUUID } from "node:crypto";
+import { existsSync } from "node:fs";
+import path from "node:path";
+import express, { type ErrorRequestHandler, type Express } from "express";
+import helmet from "helmet";
+import { defineAuthRoutes } from "./auth/routes";
+import { Provider } from "./auth/provider";
+import { limitTries } from "./auth/rate-limit";
+import { refuseForgery, sessions } from "./auth/session";
+import type { Config } from "./config";
+import { sequelize } from "./lib/db";
+import { mountRoutes, routes } from "./lib/endpoint";
+import { AppError, fromDatabase, isDatabaseDown } from "./lib/errors";
+import { describeError, type Log } from "./lib/log";
+import { withRequestId } from "./lib/request-context";
+import { buildOpenApi } from "./lib/open-api";
+import { pendingMigrations } from "./lib/migrator";
+import { defineRoutes } from "./routes";
+
+export interface AppState {
+  /** Set while the process lets its last requests end. */
+  isDraining: boolean;
+}
+
+export function createApp(config: Config<"web">, log: Log, state: AppState = { isDraining: false }): Express {
+  const app = express();
+  const provider = new Provider(config);
+  app.disable("x-powered-by");
+  app.set("trust proxy", config.TRUST_PROXY);
+
+  app.use((request, response, next) => {
+    const requestId = /^[\w-]{8,64}$/.test(request.get("x-request-id") ?? "") ? (request.get("x-request-id") as string) : randomUUID();
+    response.setHeader("x-request-id", requestId);
+    response.locals.requestId = requestId;
+    const began = process.hrtime.bigint();
+    response.on("finish", () => {
+      const durationMs = Number(process.hrtime.bigint() - began) / 1e6;
+      log.info({ requestId, method: request.method, route: response.locals.route, status: response.statusCode, durationMs }, "request");
+    });
+    withRequestId(requestId, next);
+  });
+
+  app.get("/healthz", (_request, response) => void response.json({ status: "ok" }));
+  app.get("/readyz", async (_request, response) => {
+    try {
+      if (state.isDraining) throw new AppError("draining", 503);
+      await sequelize().query("SELECT 1", { transaction: null });
+      const pending = await pendingMigrations(sequelize());
+      response.status(pending.length === 0 ? 200 : 503).json({ status: pending.length === 0 ? "ready" : "not-migrated" });
+    } catch {
+      response.status(503).json({ status: state.isDraining ? "draining" : "database-down" });
+    }
+  });
+
+  app.use(
+    helmet({
+      contentSecurityPolicy: {
+        useDefaults: false,
+        directives: {
+          defaultSrc: ["'none'"],
+          scriptSrc: ["'self'"],
+          styleSrc: ["'self'"],
+          // React sets positions of drawings as style attributes; no style element or sheet from elsewhere.
+          styleSrcAttr: ["'unsafe-inline'"],
+          fontSrc: ["'self'"],
+          imgSrc: ["'self'", "data:"],
+          connectSrc: ["'self'"],
+          manifestSrc: ["'self'"],
+          workerSrc: ["'self'"],
+          baseUri: ["'none'"],
+          frameAncestors: ["'none'"],
+          // Redirects after a form post count too, so the provider has its place here.
+          formAction: ["'self'", provider.origin],
+        },
+      },
+      crossOriginEmbedderPolicy: false,
+      strictTransportSecurity: config.PUBLIC_URL.startsWith("https:") ? { maxAge: 31_536_000 } : false,
+      referrerPolicy: { policy: "same-origin" },
+    }),
+  );
+
+  const api = express.Router();
+  api.use((_request, response, next) => {
+    response.setHeader("cache-control", "no-store");
+    next();
+  });
+  api.use(["/auth/sign-in", "/auth/callback"], limitTries("sign-in", 60, 10));
+  api.use("/auth/worker-code", limitTries("worker-code", 10, 15));
+  api.use(...sessions(config));
+  api.use(refuseForgery);
+  api.use(express.json({ limit: "4mb" }));
+
+  if (routes.length === 0) {
+    defineAuthRoutes(provider);
+    defineRoutes(config);
+  }
+  mountRoutes(api);
+  const openApi = () => buildOpenApi(routes, config.PUBLIC_URL);
+  api.get("/openapi.json", (_request, response) => void response.json(openApi()));
+  api.use((_request, _response, next) => next(new AppError("not-found", 404)));
+  app.use("/api", api);
+
+  serveClient(app);
+  app.use(problems(log));
+  return app;
+}
+
+function serveClient(app: Express): void {
+  const client = path.resolve(import.meta.dirname, import.meta.dirname.endsWith("server") && existsSync(path.resolve(import.meta.dirname, "../client")) ? "../client" : "../dist/client");
+  app.use("/assets", express.static(path.join(client, "assets"), { immutable: true, maxAge: "365d", index: false }));
+  app.use(express.static(client, { index: false, maxAge: 0 }));
+  app.get("/{*rest}", (_request, response, next) => {
+    response.setHeader("cache-control", "no-cache");
+    response.sendFile(path.join(client, "index.html"), (error) => error && next(new AppError("not-found", 404)));
+  });
+}
+
+/** Every failure leaves as problem+json; what the client can't mend is logged without its message. */
+const problems = (log: Log): ErrorRequestHandler => (thrown, _request, response, next) => {
+  const requestId = response.locals.requestId as string;
+  if (response.headersSent) return next(thrown);
+  const error = toAppError(fromDatabase(thrown));
+  if (error.status >= 500 && process.env.DBG) console.error(thrown);
+  if (error.status >= 500) log.error({ requestId, route: response.locals.route, code: error.code, ...describeError(thrown) }, "request failed");
+  response.status(error.status).type("application/problem+json").json(error.toProblem(requestId));
+};
+
+function toAppError(error: unknown): AppError {
+  if (error instanceof AppError) return error;
+  if (isDatabaseDown(error)) return new AppError("database-down", 503);
+  const status = (error as { status?: number; statusCode?: number }).status;
+  if (status === 413) return new AppError("too-large", 413);
+  if (status && status >= 400 && status < 500) return new AppError("invalid", status);
+  return new AppError("internal", 500);
+}

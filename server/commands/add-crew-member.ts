@@ -1,0 +1,29 @@
+import type { z } from "zod";
+import type { MembershipInput } from "../../shared/schemas/crew";
+import { recordAudit } from "../lib/audit";
+import { daysFromTo, spanIssues } from "../lib/date-range";
+import { execute } from "../lib/db";
+import { issue, unprocessable } from "../lib/errors";
+import type { Actor } from "../lib/policy";
+import type { Crew, Worker } from "../models/worker";
+
+export async function addCrewMember(
+  actor: Actor,
+  crew: Crew,
+  worker: Worker,
+  input: z.infer<typeof MembershipInput>,
+): Promise<void> {
+  const { fromDate, toDate, isLoan } = input;
+  const issues = spanIssues(fromDate, toDate);
+  if (fromDate < worker.hiredOn) issues.push(issue(["fromDate"], "before-hire", { hiredOn: worker.hiredOn }));
+  if (worker.leftOn !== null && fromDate > worker.leftOn) {
+    issues.push(issue(["fromDate"], "after-leaving", { leftOn: worker.leftOn }));
+  }
+  if (issues.length > 0) throw unprocessable(issues);
+  await execute(
+    `INSERT INTO crew_memberships (organization_id, crew_id, worker_id, valid, is_loan) VALUES ($1, $2, $3, ${daysFromTo("$4", "$5")}, $6)`,
+    [actor.organizationId, crew.id, worker.id, fromDate, toDate, isLoan],
+  );
+  await crew.update({ revision: crew.revision + 1 });
+  await recordAudit(actor, { action: "add-crew-member", subjectKind: "crew", subjectId: crew.id, values: input });
+}

@@ -1,0 +1,46 @@
+import type { TaskLevelInput } from "../../shared/schemas/task";
+import { recordAudit } from "../lib/audit";
+import { dateIssues } from "../lib/calendar";
+import { execute, row } from "../lib/db";
+import { issue, unprocessable } from "../lib/errors";
+import type { Actor } from "../lib/policy";
+import type { Task } from "../models/task";
+import { markDaysStale } from "./mark-days-stale";
+
+/** A task's noise from a date on, or the correction of what stood from that date. The task's row is locked. */
+export async function addTaskLevel(actor: Actor, task: Task, input: TaskLevelInput, under: string[] = []): Promise<void> {
+  const last = await row<{ number: number }>(
+    "SELECT coalesce(max(number), 0) AS number FROM task_levels WHERE task_id = :id",
+    { id: task.id },
+  );
+  const number = (last?.number ?? 0) + 1;
+  const issues = dateIssues([...under, "effectiveFrom"], input.effectiveFrom);
+  if (number > 1 && input.reason === null) issues.push(issue([...under, "reason"], "reason-needed"));
+  if (issues.length > 0) throw unprocessable(issues);
+  await execute(
+    `INSERT INTO task_levels (organization_id, task_id, number, effective_from, metric, level_db, lc_minus_la_db, octave_bands_db,
+       las_max_db, peak_db, peak_weighting, samples_db, instrument_class, grade, source_note, reason, author_id)
+     VALUES ($1, $2, $3, $4, $5::jsonb, $6, $7, $8::float8[], $9, $10, $11, $12::float8[], $13, $14, $15, $16, $17)`,
+    [
+      actor.organizationId,
+      task.id,
+      number,
+      input.effectiveFrom,
+      JSON.stringify(input.metric),
+      input.levelDb,
+      input.lcMinusLaDb,
+      input.octaveBandsDb,
+      input.lasMaxDb,
+      input.peak?.levelDb ?? null,
+      input.peak?.weighting ?? null,
+      input.samplesDb,
+      input.instrument,
+      input.grade,
+      input.sourceNote,
+      input.reason,
+      actor.userId,
+    ],
+  );
+  await recordAudit(actor, { action: "add-task-level", subjectKind: "task", subjectId: task.id, values: { number, ...input } });
+  await markDaysStale(actor.organizationId, { taskId: task.id, fromDate: input.effectiveFrom });
+}

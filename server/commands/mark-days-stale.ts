@@ -1,0 +1,40 @@
+import { execute } from "../lib/db";
+import { addJob } from "../lib/jobs";
+
+interface Concerned {
+  fromDate: string;
+  siteId?: string;
+  taskId?: string;
+  areaId?: string;
+  modelId?: string;
+  workerId?: string;
+}
+
+/**
+ * Marks the days whose inputs a change has moved and queues their recomputation, in the change's own transaction.
+ * Until they are computed anew they keep their result, marked as out of date.
+ */
+export async function markDaysStale(organizationId: string, where: Concerned): Promise<number> {
+  const { fromDate, siteId, taskId, areaId, modelId, workerId } = where;
+  const conditions = ["d.organization_id = $1", "d.date >= $2::date", "NOT d.is_stale"];
+  const bind: unknown[] = [organizationId, fromDate];
+  const value = (given: string) => `$${bind.push(given)}`;
+  if (siteId) conditions.push(`d.site_id = ${value(siteId)}`);
+  if (workerId) conditions.push(`d.worker_id = ${value(workerId)}`);
+  const usesTask = (of: string) => `EXISTS (SELECT 1 FROM shifts s JOIN shift_tasks t ON t.shift_revision_id = s.current_revision_id
+    ${of} AND s.worker_id = d.worker_id AND s.date = d.date AND NOT s.is_void)`;
+  if (taskId) conditions.push(usesTask(`WHERE t.task_id = ${value(taskId)}`));
+  if (areaId) conditions.push(usesTask(`JOIN tasks k ON k.id = t.task_id WHERE k.area_id = ${value(areaId)}`));
+  if (modelId) {
+    const model = value(modelId);
+    conditions.push(`EXISTS (SELECT 1 FROM assignments a WHERE a.worker_id = d.worker_id AND a.valid @> d.date AND ${model}::uuid IN (a.inner_model_id, a.outer_model_id))`);
+  }
+  const marked = await execute(`UPDATE days d SET is_stale = TRUE WHERE ${conditions.join(" AND ")}`, bind);
+  if (marked > 0) await queueRecompute(organizationId);
+  return marked;
+}
+
+/** One job at a time works through an organization's stale days, whoever asked for it. */
+export async function queueRecompute(organizationId: string): Promise<void> {
+  await addJob("recompute-days", { organizationId }, { key: `recompute:${organizationId}`, queue: `recompute:${organizationId}` });
+}

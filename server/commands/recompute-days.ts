@@ -1,0 +1,127 @@
+import { createHash } from "node:crypto";
+import { evaluateDay } from "../../shared/acoustics/day";
+import { METHOD_VERSION } from "../../shared/acoustics/methods";
+import type { CriterionResult, DayEvaluation, DayInput, RuleSetVersion } from "../../shared/acoustics/types";
+import { summarizeDay } from "../../shared/day/summarize-day";
+import { findCauses } from "../../shared/findings/causes";
+import { canonicalJson } from "../lib/audit";
+import { execute, rows } from "../lib/db";
+import { type DayKey, type DayRefs, hydrateDays, type ResolvedDay, resolveDays, ruleSetsOf } from "../queries/day-inputs";
+import { type DayCauses, type OpenedFinding, updateFindings } from "./update-findings";
+
+export interface RecomputedDay extends DayKey {
+  resultId: string | null;
+  /** The result is another one than before. */
+  isChanged: boolean;
+}
+
+export interface Recomputation {
+  days: RecomputedDay[];
+  opened: OpenedFinding[];
+}
+
+/**
+ * Computes days from their inputs as they stand and moves each day's pointer to the result. The same inputs give the
+ * same result row, so running it again changes nothing. The days are locked in one order: two runs never deadlock, and
+ * the later one sees the inputs of the earlier.
+ */
+export async function recomputeDays(organizationId: string, keys: readonly DayKey[]): Promise<Recomputation> {
+  if (keys.length === 0) return { days: [], opened: [] };
+  const days = JSON.stringify(keys.map(({ workerId, date }) => ({ workerId, date })));
+  const heads = await rows<DayKey & { currentResultId: string | null }>(
+    `SELECT d.worker_id AS "workerId", d.date::text AS date, d.current_result_id AS "currentResultId"
+     FROM days d JOIN jsonb_to_recordset(CAST(:days AS jsonb)) AS x("workerId" uuid, date date) ON x."workerId" = d.worker_id AND x.date = d.date
+     ORDER BY d.worker_id, d.date FOR UPDATE OF d`,
+    { days },
+  );
+  const resolved = await resolveDays(heads);
+  const inputs = await hydrateDays(resolved);
+  const computed = resolved.map((day, index) => computeDay(day, inputs[index]!));
+  const resultIds = await storeResults(organizationId, computed);
+
+  const before = new Map(heads.map((head) => [keyOf(head), head.currentResultId]));
+  const after = heads.map((head): RecomputedDay => {
+    const resultId = resultIds.get(keyOf(head)) ?? null;
+    return { workerId: head.workerId, date: head.date, resultId, isChanged: before.get(keyOf(head)) !== resultId };
+  });
+  const context = new Map(resolved.map((day) => [keyOf(day), day]));
+  await execute(
+    `UPDATE days d SET current_result_id = x."resultId", is_stale = FALSE, site_id = coalesce(x."siteId", d.site_id), crew_id = coalesce(x."crewId", d.crew_id)
+     FROM jsonb_to_recordset($1::jsonb) AS x("workerId" uuid, date date, "resultId" uuid, "siteId" uuid, "crewId" uuid)
+     WHERE d.worker_id = x."workerId" AND d.date = x.date`,
+    [JSON.stringify(after.map((day) => ({ ...day, siteId: context.get(keyOf(day))?.siteId, crewId: context.get(keyOf(day))?.crewId })))],
+  );
+
+  const causes = after.map((day): DayCauses => {
+    const found = computed.find((one) => one.day.workerId === day.workerId && one.day.date === day.date);
+    return {
+      workerId: day.workerId, date: day.date, resultId: day.resultId,
+      siteId: found?.day.siteId ?? null, jobId: found?.day.jobId ?? null,
+      causes: found ? findCauses(found.input, found.evaluation, found.governing) : [],
+      input: found?.input ?? null, governing: found?.governing ?? null,
+    };
+  });
+  const opened = await updateFindings(organizationId, causes);
+  return { days: after, opened };
+}
+
+const keyOf = ({ workerId, date }: DayKey) => `${workerId} ${date}`;
+
+interface ComputedDay {
+  day: ResolvedDay;
+  input: DayInput;
+  evaluation: DayEvaluation;
+  governing: RuleSetVersion;
+  hash: string;
+}
+
+function computeDay(day: ResolvedDay, input: DayInput): ComputedDay {
+  const { governing, comparison } = ruleSetsOf(day.refs);
+  const evaluation = evaluateDay(input, governing, comparison);
+  return { day, input, evaluation, governing, hash: hashOf(day.refs) };
+}
+
+/** Names what a result rests on: input revisions, rule-set versions, method version. */
+export function hashOf(refs: DayRefs, methodVersion: number = METHOD_VERSION): string {
+  return createHash("sha256").update(canonicalJson({ refs, methodVersion })).digest("hex");
+}
+
+async function storeResults(organizationId: string, computed: readonly ComputedDay[]): Promise<Map<string, string>> {
+  if (computed.length === 0) return new Map();
+  const records = computed.map(({ day, input, evaluation, governing, hash }) => {
+    const { governingCriteria: _, ...summary } = summarizeDay(input, evaluation, governing);
+    const isOwn = ({ ruleSetKey }: CriterionResult) => ruleSetKey === governing.key;
+    return {
+      ...summary,
+      workerId: day.workerId, siteId: day.siteId, hash, methodVersion: evaluation.methodVersion,
+      shiftMin: evaluation.shiftMin, unaccountedMin: evaluation.unaccountedMin, grade: evaluation.grade,
+      isProjected: evaluation.isProjected, isKept: evaluation.keptReasons.length > 0,
+      criteria: { governing: evaluation.criteria.filter(isOwn), comparison: evaluation.criteria.filter((result) => !isOwn(result)) },
+      refs: day.refs,
+    };
+  });
+  const json = JSON.stringify(records);
+  await execute(
+    `INSERT INTO day_results (organization_id, site_id, worker_id, date, origin, governing_rule_set, governing_version, method_version, inputs_hash,
+       shift_min, unaccounted_min, grade, is_projected, is_kept, outside_db, outside_bound, at_ear_db, at_ear_active_db, at_ear_as_worked_db,
+       uncertainty_db, dose_pct, while_worn_db, verdict_outside, verdict_at_ear, word, deciding_task_id, has_protector, reason, criteria, refs)
+     SELECT $1, x."siteId", x."workerId", x.date, 'computed', x."ruleSetKey", x."ruleSetVersion", x."methodVersion", decode(x.hash, 'hex'),
+       x."shiftMin", x."unaccountedMin", x.grade, x."isProjected", x."isKept", x."outsideDb", x."outsideBound", x."atEarDb", x."atEarActiveDb",
+       x."atEarAsWorkedDb", x."uncertaintyDb", x."dosePct", x."whileWornDb", x."verdictOutside", x."verdictAtEar", x.word, x."decidingTaskId",
+       x."hasProtector", x.reason, x.criteria, x.refs
+     FROM jsonb_to_recordset($2::jsonb) AS x("siteId" uuid, "workerId" uuid, date date, hash text, "ruleSetKey" text, "ruleSetVersion" int,
+       "methodVersion" int, "shiftMin" float8, "unaccountedMin" float8, grade text, "isProjected" boolean, "isKept" boolean, "outsideDb" float8,
+       "outsideBound" text, "atEarDb" float8, "atEarActiveDb" float8, "atEarAsWorkedDb" float8, "uncertaintyDb" float8, "dosePct" float8,
+       "whileWornDb" float8, "verdictOutside" text, "verdictAtEar" text, word text, "decidingTaskId" uuid, "hasProtector" text, reason text,
+       criteria jsonb, refs jsonb)
+     ON CONFLICT (worker_id, date, inputs_hash) DO NOTHING`,
+    [organizationId, json],
+  );
+  const stored = await rows<DayKey & { id: string }>(
+    `SELECT r.worker_id AS "workerId", r.date::text AS date, r.id
+     FROM jsonb_to_recordset(CAST(:json AS jsonb)) AS x("workerId" uuid, date date, hash text)
+     JOIN day_results r ON r.worker_id = x."workerId" AND r.date = x.date AND r.inputs_hash = decode(x.hash, 'hex')`,
+    { json: JSON.stringify(records.map(({ workerId, date, hash }) => ({ workerId, date, hash }))) },
+  );
+  return new Map(stored.map((row) => [keyOf(row), row.id]));
+}

@@ -1,0 +1,240 @@
+import { randomUUID } from "node:crypto";
+import type { DayInput, ProtectorData, RuleSetVersion } from "../../shared/acoustics/types";
+import type { Cause } from "../../shared/findings/causes";
+import { proposeRemedy } from "../../shared/findings/remedy";
+import type { FindingKind, FindingState } from "../../shared/schemas/finding";
+import { recordAudit, recordAuditMany } from "../lib/audit";
+import { execute, rows } from "../lib/db";
+import { registerOn } from "../queries/protector-register";
+
+export interface DayCauses {
+  workerId: string;
+  date: string;
+  resultId: string | null;
+  siteId: string | null;
+  jobId: string | null;
+  causes: readonly Cause[];
+  input: DayInput | null;
+  governing: RuleSetVersion | null;
+}
+
+export interface OpenedFinding {
+  id: string;
+  kind: FindingKind;
+  workerId: string;
+  siteId: string;
+  date: string;
+  resultId: string;
+}
+
+interface FindingRow {
+  id: string;
+  workerId: string | null;
+  jobId: string | null;
+  kind: FindingKind;
+  criterion: string;
+  useKey: string;
+  state: FindingState;
+  lastDate: string;
+  closedOn: string | null;
+  /** Closed because its only day was corrected: for a later correction it never was. */
+  wasWithdrawn: boolean;
+}
+
+/** Kinds for which a protector of the register may be the answer. */
+const mendable = new Set<FindingKind>(["over-limit-at-ear", "protects-too-little", "protects-too-much", "no-protector", "dual-protection"]);
+
+const causeKey = (subject: string, { kind, criterion, useKey }: Pick<Cause, "kind" | "criterion" | "useKey">) =>
+  [subject, kind, criterion, useKey].join("|");
+
+/**
+ * Holds the findings to what the days show now. A cause has one open finding, to which further days attach; a closed one
+ * comes back only for a day dated after its closing; a day that was corrected away takes its evidence with it.
+ */
+export async function updateFindings(organizationId: string, days: readonly DayCauses[]): Promise<OpenedFinding[]> {
+  const workerIds = [...new Set(days.map(({ workerId }) => workerId))];
+  const jobIds = [...new Set(days.flatMap(({ jobId }) => (jobId ? [jobId] : [])))];
+  await withdrawEvidence(organizationId, days);
+  const present = days.filter((day) => day.resultId !== null && day.causes.length > 0);
+  if (present.length === 0) return [];
+
+  const known = await rows<FindingRow>(
+    `SELECT DISTINCT ON (f.worker_id, f.job_id, f.kind, f.criterion, f.use_key) f.id, f.worker_id AS "workerId", f.job_id AS "jobId", f.kind,
+       f.criterion, f.use_key AS "useKey", f.state, f.last_date::text AS "lastDate", f.closed_on::text AS "closedOn", coalesce(f.closing_reason = 'evidence-gone', FALSE) AS "wasWithdrawn"
+     FROM findings f
+     WHERE f.organization_id = :organizationId AND (f.worker_id = ANY (CAST(:workerIds AS uuid[])) OR f.job_id = ANY (CAST(:jobIds AS uuid[])))
+     ORDER BY f.worker_id, f.job_id, f.kind, f.criterion, f.use_key, (f.state <> 'closed') DESC, f.opened_at DESC`,
+    { organizationId, workerIds: `{${workerIds.join(",")}}`, jobIds: `{${jobIds.join(",")}}` },
+  );
+  const byCause = new Map(known.map((row) => [causeKey((row.jobId ?? row.workerId) as string, row), row]));
+
+  const opened: OpenedFinding[] = [];
+  const evidence: Evidence[] = [];
+  const fresh: NewFinding[] = [];
+  const latest = new Map<string, { day: DayCauses; cause: Cause }>();
+  // Oldest day first, so that a finding's facts end up as those of its latest day.
+  for (const day of present.toSorted((a, b) => (a.date < b.date ? -1 : 1))) {
+    for (const cause of day.causes) {
+      const ofJob = cause.concerns === "job";
+      const subject = ofJob ? day.jobId : day.workerId;
+      if (subject === null || day.resultId === null || day.siteId === null) continue;
+      const key = causeKey(subject, cause);
+      let finding = byCause.get(key);
+      if (!finding || finding.state === "closed") {
+        const closed = finding?.wasWithdrawn ? undefined : finding;
+        if (closed?.closedOn && day.date <= closed.closedOn) continue;
+        const { kind, criterion, useKey } = cause;
+        const id = randomUUID();
+        const state: FindingState = closed ? "came-back" : "new";
+        const owner = { workerId: ofJob ? null : day.workerId, jobId: ofJob ? day.jobId : null };
+        fresh.push({ id, siteId: day.siteId, ...owner, kind, criterion, useKey, state, date: day.date, resultId: day.resultId, dueIn: dueInDays(kind), previousId: closed?.id ?? null });
+        opened.push({ id, kind, workerId: day.workerId, siteId: day.siteId, date: day.date, resultId: day.resultId });
+        finding = { id, ...owner, kind, criterion, useKey, state, lastDate: day.date, closedOn: null, wasWithdrawn: false };
+        byCause.set(key, finding);
+      }
+      evidence.push({ findingId: finding.id, workerId: day.workerId, date: day.date, resultId: day.resultId });
+      if (day.date >= finding.lastDate) {
+        finding.lastDate = day.date;
+        latest.set(finding.id, { day, cause });
+      }
+    }
+  }
+  await insertFindings(organizationId, fresh);
+  await attachEvidence(organizationId, evidence);
+  const register = new Map<string, ProtectorData[]>();
+  const facts: { findingId: string; facts: Record<string, unknown> }[] = [];
+  for (const [findingId, { day, cause }] of latest) facts.push({ findingId, facts: await factsOf(day, cause, register) });
+  await settleFindings([...new Set(evidence.map(({ findingId }) => findingId))], facts);
+  return opened;
+}
+
+interface Evidence {
+  findingId: string;
+  workerId: string;
+  date: string;
+  resultId: string;
+}
+
+interface NewFinding {
+  id: string;
+  siteId: string;
+  workerId: string | null;
+  jobId: string | null;
+  kind: FindingKind;
+  criterion: string;
+  useKey: string;
+  state: FindingState;
+  date: string;
+  resultId: string;
+  dueIn: number;
+  previousId: string | null;
+}
+
+async function factsOf(day: DayCauses, cause: Cause, register: Map<string, ProtectorData[]>): Promise<Record<string, unknown>> {
+  if (!mendable.has(cause.kind) || !day.input || !day.governing) return { ...cause.facts };
+  const models = register.get(day.date) ?? (await registerOn(day.date));
+  register.set(day.date, models);
+  return { ...cause.facts, remedy: proposeRemedy(day.input, day.governing, models) };
+}
+
+async function insertFindings(organizationId: string, fresh: readonly NewFinding[]): Promise<void> {
+  if (fresh.length === 0) return;
+  const json = JSON.stringify(fresh);
+  await execute(
+    `INSERT INTO findings (id, organization_id, site_id, worker_id, job_id, kind, criterion, use_key, state, first_date, last_date, last_result_id, due_on, previous_id)
+     SELECT x.id, $1, x."siteId", x."workerId", x."jobId", x.kind, x.criterion, x."useKey", x.state, x.date, x.date, x."resultId", x.date + x."dueIn", x."previousId"
+     FROM jsonb_to_recordset($2::jsonb) AS x(id uuid, "siteId" uuid, "workerId" uuid, "jobId" uuid, kind text, criterion text, "useKey" text,
+       state text, date date, "resultId" uuid, "dueIn" int, "previousId" uuid)`,
+    [organizationId, json],
+  );
+  await execute(
+    `INSERT INTO finding_steps (organization_id, finding_id, kind, from_state, to_state)
+     SELECT $1, x.id, 'state', CASE WHEN x."previousId" IS NOT NULL THEN 'closed' END, x.state
+     FROM jsonb_to_recordset($2::jsonb) AS x(id uuid, "previousId" uuid, state text)`,
+    [organizationId, json],
+  );
+  await recordAuditMany(
+    { organizationId },
+    fresh.map(({ id, kind, criterion, date }) => ({ action: "open-finding", subjectKind: "finding", subjectId: id, values: { kind, criterion, date } })),
+  );
+}
+
+async function attachEvidence(organizationId: string, evidence: readonly Evidence[]): Promise<void> {
+  await execute(
+    `INSERT INTO finding_evidence (organization_id, finding_id, worker_id, date, result_id)
+     SELECT $1, x."findingId", x."workerId", x.date, x."resultId"
+     FROM jsonb_to_recordset($2::jsonb) AS x("findingId" uuid, "workerId" uuid, date date, "resultId" uuid)
+     ON CONFLICT (finding_id, worker_id, date) DO UPDATE SET result_id = excluded.result_id WHERE finding_evidence.result_id <> excluded.result_id`,
+    [organizationId, JSON.stringify(evidence)],
+  );
+}
+
+/** Brings counts and dates in line with the evidence, and the facts with those of the latest day. */
+async function settleFindings(findingIds: readonly string[], facts: readonly { findingId: string; facts: Record<string, unknown> }[]): Promise<void> {
+  if (findingIds.length === 0) return;
+  await execute(
+    `UPDATE findings f SET days_count = e.count, first_date = e.first, last_date = e.last, last_result_id = e.result, facts = coalesce(x.facts, f.facts)
+     FROM (SELECT finding_id, count(*)::int AS count, min(date) AS first, max(date) AS last, (array_agg(result_id ORDER BY date DESC))[1] AS result
+           FROM finding_evidence WHERE finding_id = ANY ($1::uuid[]) GROUP BY finding_id) e
+     LEFT JOIN jsonb_to_recordset($2::jsonb) AS x("findingId" uuid, facts jsonb) ON x."findingId" = e.finding_id
+     WHERE f.id = e.finding_id`,
+    [findingIds, JSON.stringify(facts)],
+  );
+}
+
+/** When somebody has to have acted. Common practice, no source. */
+function dueInDays(kind: FindingKind): number {
+  if (["over-limit-at-ear", "no-protector", "protects-too-little", "dual-protection", "peak-or-ceiling"].includes(kind)) return 1;
+  if (["not-worn-long-enough", "wearing-unknown", "time-not-accounted"].includes(kind)) return 3;
+  return 14;
+}
+
+interface Attached {
+  findingId: string;
+  workerId: string;
+  date: string;
+  kind: FindingKind;
+  criterion: string;
+  useKey: string;
+  state: FindingState;
+}
+
+async function withdrawEvidence(organizationId: string, days: readonly DayCauses[]): Promise<void> {
+  const attached = await rows<Attached>(
+    `SELECT e.finding_id AS "findingId", e.worker_id AS "workerId", e.date::text AS date, f.kind, f.criterion, f.use_key AS "useKey", f.state
+     FROM finding_evidence e JOIN findings f ON f.id = e.finding_id
+     JOIN jsonb_to_recordset(CAST(:days AS jsonb)) AS x("workerId" uuid, date date) ON x."workerId" = e.worker_id AND x.date = e.date
+     WHERE f.state <> 'closed' AND f.kind <> 'problem-reported'`,
+    { days: JSON.stringify(days.map(({ workerId, date }) => ({ workerId, date }))) },
+  );
+  const causesOf = new Map(days.map((day) => [`${day.workerId} ${day.date}`, day.causes]));
+  const gone = attached.filter(({ workerId, date, kind, criterion, useKey }) =>
+    !(causesOf.get(`${workerId} ${date}`) ?? []).some((cause) => cause.kind === kind && cause.criterion === criterion && cause.useKey === useKey));
+  if (gone.length === 0) return;
+  await execute(
+    `DELETE FROM finding_evidence e USING jsonb_to_recordset($1::jsonb) AS x("findingId" uuid, "workerId" uuid, date date)
+     WHERE e.finding_id = x."findingId" AND e.worker_id = x."workerId" AND e.date = x.date`,
+    [JSON.stringify(gone)],
+  );
+  const touched = [...new Map(gone.map((one) => [one.findingId, one])).values()];
+  const left = await rows<{ findingId: string }>(
+    `SELECT DISTINCT finding_id AS "findingId" FROM finding_evidence WHERE finding_id = ANY (CAST(:ids AS uuid[]))`,
+    { ids: `{${touched.map(({ findingId }) => findingId).join(",")}}` },
+  );
+  const hasEvidence = new Set(left.map(({ findingId }) => findingId));
+  await settleFindings([...hasEvidence], []);
+  for (const { findingId, date, state } of touched.filter((one) => !hasEvidence.has(one.findingId))) {
+    // Nobody has taken it up and nothing of it is left: a typing error that was caught.
+    const closes = state === "new" || state === "came-back";
+    await execute(
+      "INSERT INTO finding_steps (organization_id, finding_id, kind, from_state, to_state, text) VALUES ($1, $2, 'evidence-gone', $3, $4, $5)",
+      [organizationId, findingId, state, closes ? "closed" : state, date],
+    );
+    if (!closes) {
+      await execute("UPDATE findings SET days_count = 0 WHERE id = $1", [findingId]);
+      continue;
+    }
+    await execute("UPDATE findings SET state = 'closed', closed_on = $2, closing_reason = 'evidence-gone', revision = revision + 1 WHERE id = $1", [findingId, date]);
+    await recordAudit({ organizationId }, { action: "withdraw-finding", subjectKind: "finding", subjectId: findingId, values: { date } });
+  }
+}

@@ -1,0 +1,57 @@
+import nodemailer, { type Transporter } from "nodemailer";
+
+export interface OutgoingMail {
+  to: string;
+  subject: string;
+  text: string;
+  html: string;
+  messageId: string;
+}
+
+/** What became of an attempt: taken, refused for now, refused for good, or nobody knows. */
+export type MailOutcome =
+  | { kind: "sent" }
+  | { kind: "later" | "never" | "unknown"; error: string };
+
+interface SmtpError extends Error {
+  code?: string;
+  command?: string;
+  responseCode?: number;
+}
+
+/** Commands before the message itself: a failure there means that nothing was handed over. */
+const beforeMessage = /^(CONN|EHLO|HELO|STARTTLS|AUTH|MAIL FROM|RCPT TO)/;
+
+export class Mailer {
+  private readonly transport: Transporter;
+
+  constructor(url: string, private readonly from: string) {
+    const { hostname, port, username, password, protocol } = new URL(url);
+    const secure = protocol === "smtps:";
+    this.transport = nodemailer.createTransport({
+      host: hostname,
+      port: Number(port || (secure ? 465 : 587)),
+      secure,
+      ...(username ? { auth: { user: decodeURIComponent(username), pass: decodeURIComponent(password) } } : {}),
+      connectionTimeout: 10_000,
+      greetingTimeout: 10_000,
+      socketTimeout: 20_000,
+    });
+  }
+
+  async send({ to, ...mail }: OutgoingMail): Promise<MailOutcome> {
+    try {
+      await this.transport.sendMail({ ...mail, to, from: this.from, headers: { "Auto-Submitted": "auto-generated" } });
+      return { kind: "sent" };
+    } catch (thrown) {
+      const error = thrown as SmtpError;
+      const said = [error.code, error.responseCode].filter(Boolean).join(" ") || error.name;
+      if (error.responseCode !== undefined) return { kind: error.responseCode >= 500 ? "never" : "later", error: said };
+      return { kind: beforeMessage.test(error.command ?? "") || error.code === "ECONNREFUSED" ? "later" : "unknown", error: said };
+    }
+  }
+
+  close(): void {
+    this.transport.close();
+  }
+}

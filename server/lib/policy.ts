@@ -1,0 +1,101 @@
+import { literal, type Model, type ModelStatic, Op, type WhereOptions } from "sequelize";
+import { forbidden, notFound } from "./errors";
+
+export const ROLES = ["officer", "supervisor", "worker", "auditor", "administrator"] as const;
+export type Role = (typeof ROLES)[number];
+
+const uuid = /^[0-9a-f-]{36}$/;
+
+/** Who asks: a sign-in with its grants. A grant without a site holds for all sites of the organization. */
+export class Actor {
+  constructor(
+    readonly userId: string,
+    readonly organizationId: string,
+    readonly name: string,
+    readonly email: string | null,
+    readonly language: string,
+    readonly workerId: string | null,
+    readonly grants: readonly { readonly role: Role; readonly siteId: string | null }[],
+  ) {
+    for (const id of [userId, organizationId, workerId, ...grants.map(({ siteId }) => siteId)]) {
+      if (id !== null && !uuid.test(id)) throw new Error("an actor's ids are uuids");
+    }
+  }
+
+  is(...roles: Role[]): boolean {
+    return this.grants.some(({ role }) => roles.includes(role));
+  }
+
+  isAt(siteId: string, ...roles: Role[]): boolean {
+    return this.grants.some((grant) => roles.includes(grant.role) && (grant.siteId === null || grant.siteId === siteId));
+  }
+
+  /** SQL: the row's site is one for which this actor holds one of the roles; false where there is none. */
+  at(siteColumn: string, ...roles: Role[]): string | false {
+    const held = this.grants.filter(({ role }) => roles.includes(role));
+    if (held.length === 0) return false;
+    if (held.some(({ siteId }) => siteId === null)) return "TRUE";
+    return `${siteColumn} IN (${held.map(({ siteId }) => `'${siteId}'`).join(", ")})`;
+  }
+
+  /** SQL: a worker is in one of this supervisor's crews on a date, by the memberships of that date. */
+  supervises(workerColumn: string, dateExpression: string): string | false {
+    if (!this.is("supervisor")) return false;
+    return `EXISTS (SELECT 1 FROM crew_memberships m JOIN crew_supervisors s ON s.crew_id = m.crew_id
+      WHERE m.worker_id = ${workerColumn} AND m.valid @> ${dateExpression} AND s.valid @> ${dateExpression} AND s.user_id = '${this.userId}')`;
+  }
+
+  /** SQL: the row is this worker's own. */
+  owns(workerColumn: string): string | false {
+    return this.is("worker") && this.workerId !== null && `${workerColumn} = '${this.workerId}'`;
+  }
+}
+
+type Condition = string | false | null | undefined;
+
+export interface Policy<Action extends string, Row> {
+  /** SQL conditions on the row's alias, each a whole grant; the actor sees what any of them lets through. */
+  readonly sees: (actor: Actor, alias: string) => readonly Condition[];
+  readonly can: Readonly<Record<Action, (actor: Actor, row: Row) => boolean>>;
+}
+
+export function policy<Row>() {
+  return <Action extends string>(definition: Policy<Action, Row>): Policy<Action, Row> => definition;
+}
+
+/** SQL that is true for the rows this actor may see. No grant, no rows. */
+export function visible<A extends string, R>(of: Policy<A, R>, actor: Actor, alias: string): string {
+  const grants = of.sees(actor, alias).filter((condition): condition is string => Boolean(condition));
+  return grants.length === 0 ? "FALSE" : `(${grants.map((grant) => `(${grant})`).join(" OR ")})`;
+}
+
+/**
+ * The row, if it is this actor's to see.
+ *
+ * @throws AppError not-found: not there, not of this organization, or not theirs to know of.
+ */
+export async function findVisible<Found extends Model, A extends string, R>(
+  model: ModelStatic<Found>,
+  of: Policy<A, R>,
+  id: string,
+  actor: Actor,
+  options: { lock?: boolean } = {},
+): Promise<Found> {
+  const condition = visible(of, actor, `"${model.name}"`);
+  const where = { id, organizationId: actor.organizationId, [Op.and]: [literal(condition)] } as WhereOptions;
+  const found = await model.findOne({ where, lock: options.lock });
+  if (!found) throw notFound();
+  return found;
+}
+
+/** @throws AppError forbidden: seen, but not theirs to do. */
+export function authorize<A extends string, R>(of: Policy<A, R>, actor: Actor, action: A, row: R): void {
+  if (!of.can[action](actor, row)) throw forbidden();
+}
+
+/** What the actor may do with a row, sent beside its fields. */
+export function abilities<A extends string, R>(of: Policy<A, R>, actor: Actor, row: R): Record<A, boolean> {
+  return Object.fromEntries(
+    Object.entries(of.can).map(([action, may]) => [action, (may as (actor: Actor, row: R) => boolean)(actor, row)]),
+  ) as Record<A, boolean>;
+}

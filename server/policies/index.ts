@@ -1,0 +1,163 @@
+import type { Actor } from "../lib/policy";
+import { policy } from "../lib/policy";
+
+interface AtSite {
+  siteId: string;
+}
+interface OfWorker extends AtSite {
+  workerId: string | null;
+}
+
+const officerAt = (actor: Actor, { siteId }: AtSite) => actor.isAt(siteId, "officer");
+
+/** Today in SQL terms where a membership has to hold now. */
+const today = "current_date";
+
+/** Sites: everybody with a role knows the sites of their grants; what exposure rests on is the officer's to change. */
+export const sitePolicy = policy<{ id: string }>()({
+  sees: (actor, s) => [actor.at(`${s}.id`, "officer", "supervisor", "worker", "auditor", "administrator")],
+  can: {
+    /** A new site is nobody's yet: only who administers all of them adds one. */
+    create: (actor) => actor.grants.some(({ role, siteId }) => role === "administrator" && siteId === null),
+    change: (actor, { id }) => actor.isAt(id, "administrator"),
+    changeRules: (actor, { id }) => actor.isAt(id, "officer"),
+  },
+});
+
+/** Areas, tasks, jobs and instruments describe the programme, not a person. */
+export const programmePolicy = policy<AtSite>()({
+  sees: (actor, t) => [actor.at(`${t}.site_id`, "officer", "auditor", "supervisor")],
+  can: { change: officerAt },
+});
+
+export const crewPolicy = policy<AtSite>()({
+  sees: (actor, c) => [
+    actor.at(`${c}.site_id`, "officer", "auditor"),
+    actor.is("supervisor") &&
+      `EXISTS (SELECT 1 FROM crew_supervisors s WHERE s.crew_id = ${c}.id AND s.user_id = '${actor.userId}' AND s.valid @> ${today})`,
+  ],
+  can: { change: officerAt, enterDay: officerAt },
+});
+
+export const workerPolicy = policy<AtSite & { id: string }>()({
+  sees: (actor, w) => [
+    actor.at(`${w}.site_id`, "officer", "auditor"),
+    actor.supervises(`${w}.id`, today),
+    actor.owns(`${w}.id`),
+  ],
+  can: {
+    change: officerAt,
+    assign: officerAt,
+    issueCode: (actor, { siteId }) => actor.isAt(siteId, "officer", "administrator"),
+    report: (actor, { id }) => actor.is("worker") && actor.workerId === id,
+  },
+});
+
+/** A worker's name and number, and no more: what linking a sign-in takes. */
+export const workerNamePolicy = policy<AtSite>()({
+  sees: (actor, w) => [actor.at(`${w}.site_id`, "officer", "administrator")],
+  can: { issueCode: (actor, { siteId }) => actor.isAt(siteId, "officer", "administrator") },
+});
+
+/** Why a worker has a personal requirement. */
+export const requirementPolicy = policy<AtSite>()({
+  sees: (actor, w) => [actor.at(`${w}.site_id`, "officer")],
+  can: { read: officerAt, change: officerAt },
+});
+
+/** A supervisor sees a day by the membership of that day; a worker sees own days. */
+export const dayPolicy = policy<OfWorker>()({
+  sees: (actor, d) => [
+    actor.at(`${d}.site_id`, "officer", "auditor"),
+    actor.supervises(`${d}.worker_id`, `${d}.date`),
+    actor.owns(`${d}.worker_id`),
+  ],
+  can: { correct: officerAt },
+});
+
+export const shiftPolicy = dayPolicy;
+
+export const runPolicy = policy<AtSite>()({
+  sees: (actor, r) => [
+    actor.at(`${r}.site_id`, "officer", "auditor"),
+    actor.supervises(`${r}.worker_id`, `${r}.date`),
+    actor.owns(`${r}.worker_id`),
+  ],
+  can: { correct: officerAt },
+});
+
+/** The register of protectors belongs to the organization. */
+export const protectorPolicy = policy<object>()({
+  sees: (actor) => [actor.is("officer", "auditor", "supervisor") && "TRUE"],
+  can: { change: (actor) => actor.is("officer") },
+});
+
+export const assignmentPolicy = policy<AtSite>()({
+  sees: (actor, a) => [
+    actor.at(`(SELECT w.site_id FROM workers w WHERE w.id = ${a}.worker_id)`, "officer", "auditor"),
+    actor.supervises(`${a}.worker_id`, today),
+    actor.owns(`${a}.worker_id`),
+  ],
+  can: { change: officerAt },
+});
+
+/** Findings that a worker reported, or that concern them, are theirs to read; a supervisor acts on own crews'. */
+export const findingPolicy = policy<AtSite>()({
+  sees: (actor, f) => [
+    actor.at(`${f}.site_id`, "officer", "auditor"),
+    actor.supervises(`${f}.worker_id`, today),
+    actor.supervises(`${f}.worker_id`, `${f}.last_date`),
+    actor.owns(`${f}.worker_id`),
+  ],
+  can: {
+    handle: officerAt,
+    markDone: (actor, { siteId }) => actor.isAt(siteId, "officer") || actor.is("supervisor"),
+    comment: (actor, { siteId }) => actor.isAt(siteId, "officer") || actor.is("supervisor"),
+  },
+});
+
+export const noticePolicy = policy<AtSite>()({
+  sees: (actor, n) => [actor.at(`${n}.site_id`, "officer", "auditor"), `${n}.recipient_id = '${actor.userId}'`],
+  can: { handle: officerAt },
+});
+
+/** People and roles. An administrator grants them and reads no exposure by it. */
+export const userPolicy = policy<{ id: string }>()({
+  sees: (actor, u) => [actor.is("administrator") && "TRUE", `${u}.id = '${actor.userId}'`],
+  can: {
+    change: (actor) => actor.is("administrator"),
+    revoke: (actor, { id }) => actor.is("administrator") && actor.userId !== id,
+  },
+});
+
+/** The site an event is about, by its subject. */
+const siteOfEvent = (e: string) => `(CASE ${e}.subject_kind WHEN 'site' THEN ${e}.subject_id
+  ${["area", "task", "job", "crew", "worker", "instrument", "shift", "run", "finding", "notice"]
+    .map((kind) => `WHEN '${kind}' THEN (SELECT x.site_id FROM ${kind}s x WHERE x.id = ${e}.subject_id)`)
+    .join(" ")} END)`;
+
+/** The trail: the auditor's whole; an administrator's as far as it is about people, roles and sites. */
+export const auditPolicy = policy<object>()({
+  sees: (actor, e) => [
+    actor.at(siteOfEvent(e), "auditor"),
+    actor.is("auditor") && `${e}.subject_kind = 'protector'`,
+    actor.is("administrator") && `${e}.subject_kind IN ('user', 'site')`,
+  ],
+  can: {},
+});
+
+/** Which roles may call a route at all. */
+export const may = {
+  officer: (actor: Actor) => actor.is("officer"),
+  /** The programme's description, without people's exposures. */
+  readProgramme: (actor: Actor) => actor.is("officer", "auditor", "supervisor"),
+  readDays: (actor: Actor) => actor.is("officer", "auditor", "supervisor", "worker"),
+  readCrews: (actor: Actor) => actor.is("officer", "auditor", "supervisor"),
+  followUp: (actor: Actor) => actor.is("officer", "supervisor"),
+  export: (actor: Actor) => actor.is("officer", "auditor"),
+  reportProblem: (actor: Actor) => actor.is("worker"),
+  administer: (actor: Actor) => actor.is("administrator"),
+  issueCodes: (actor: Actor) => actor.is("officer", "administrator"),
+  readTrail: (actor: Actor) => actor.is("auditor", "administrator"),
+  readSites: (actor: Actor) => actor.is("officer", "auditor", "administrator", "supervisor"),
+};

@@ -1,0 +1,20 @@
+import type { InstrumentView } from "../../shared/schemas/run";
+import { abilities, type Actor } from "../lib/policy";
+import { programmePolicy } from "../policies";
+import type { InstrumentRow } from "../queries/instruments";
+
+export function presentInstrument(actor: Actor, row: InstrumentRow): InstrumentView {
+  return {
+    id: row.id,
+    siteId: row.siteId,
+    kind: row.kind,
+    class: row.class,
+    serialNumber: row.serialNumber,
+    name: row.name,
+    calibrationDueOn: row.calibrationDueOn,
+    presets: row.presets,
+    isArchived: row.isArchived,
+    revision: row.revision,
+    can: abilities(programmePolicy, actor, row),
+  };
+}

@@ -1,0 +1,51 @@
+import type { z } from "zod";
+import type { ProtectorDetail, ProtectorView } from "../../shared/schemas/protector";
+import { abilities, type Actor } from "../lib/policy";
+import { protectorPolicy } from "../policies";
+import type { ProtectorRevisionRow, ProtectorRow } from "../queries/protectors";
+
+function presentFacts({ id, number, effectiveFrom, data }: ProtectorRevisionRow) {
+  return {
+    id,
+    number,
+    effectiveFrom,
+    usRatingDb: data.usRatingDb,
+    snrDb: data.snrDb,
+    hDb: data.hDb,
+    mDb: data.mDb,
+    lDb: data.lDb,
+    slc80Db: data.slc80Db,
+    bands: data.bands,
+    active: data.active,
+  };
+}
+
+export function presentProtector(actor: Actor, row: ProtectorRow, revision: ProtectorRevisionRow | undefined): ProtectorView {
+  if (!revision) throw new Error("a protector has data from its first day on");
+  return {
+    id: row.id,
+    name: row.name,
+    kind: row.kind,
+    isArchived: row.isArchived,
+    revision: row.revision,
+    data: presentFacts(revision),
+    wearersToday: row.wearersToday,
+    can: abilities(protectorPolicy, actor, row),
+  };
+}
+
+export function presentProtectorDetail(
+  actor: Actor,
+  row: ProtectorRow,
+  revisions: readonly ProtectorRevisionRow[],
+): z.infer<typeof ProtectorDetail> {
+  return {
+    ...presentProtector(actor, row, revisions.find(({ isInForce }) => isInForce)),
+    history: revisions.map((revision) => ({
+      ...presentFacts(revision),
+      reason: revision.reason,
+      authorName: revision.authorName,
+      createdAt: revision.createdAt.toISOString(),
+    })),
+  };
+}

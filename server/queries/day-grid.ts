@@ -1,0 +1,218 @@
+import type { TaskLevel, Unaccounted } from "../../shared/acoustics/types";
+import type { DayGridView, GridRow, ShiftTaskInput } from "../../shared/schemas/shift";
+import { localDate } from "../../shared/time/zone";
+import { row, rows } from "../lib/db";
+import type { Crew } from "../models/worker";
+import { dayFiguresOf } from "./day-figures";
+import { LEVEL_COLUMNS, PROTECTOR_COLUMNS, toProtector, toTaskLevel } from "./day-inputs";
+import { entryNotices } from "./entry-notices";
+import { presentSavedShift, readingsOfDay, savedShifts } from "./saved-shifts";
+import { settingsInForce } from "./site-settings";
+
+interface MemberRow {
+  id: string;
+  name: string;
+  employeeNumber: string;
+  mustWear: boolean;
+  personalTargetDb: number | null;
+  hiredOn: string;
+  leftOn: string | null;
+  isLoan: boolean;
+  isAbsent: boolean;
+  nominal: { taskId: string; durationMin: number }[];
+}
+
+/** Everything that a crew's day is entered with: one answer, a fixed number of statements. */
+export async function dayGrid(crew: Crew, date: string): Promise<DayGridView> {
+  const site = await row<{ name: string; timeZone: string }>(`SELECT name, time_zone AS "timeZone" FROM sites WHERE id = :id`, { id: crew.siteId });
+  const members = await crewMembers(crew.id, date);
+  const ids = `{${members.map(({ id }) => id).join(",")}}`;
+  const saved = await savedShifts("s.worker_id = ANY (CAST(:ids AS uuid[])) AND s.date = :date", { ids, date });
+  const [tasks, assignments, lastWorn, longest, lastShifts, readings, figures, instruments, entry] = [
+    await gridTasks(crew.siteId, date),
+    await assignmentsOn(ids, date),
+    await lastWearing(ids, date),
+    await longestStays(ids, date),
+    await lastShiftsBefore(ids, crew.id, date),
+    await readingsOfDay(members.map(({ id }) => id), date),
+    await dayFiguresOf(members.map(({ id }) => id), date),
+    await rows<DayGridView["instruments"][number]>(
+      `SELECT id, name, serial_number AS "serialNumber", class, kind, presets FROM instruments WHERE site_id = :siteId AND NOT is_archived AND kind <> 'calibrator' ORDER BY name`,
+      { siteId: crew.siteId },
+    ),
+    await latestEntry(crew.id, date),
+  ];
+  const settings = await settingsInForce(crew.siteId, date);
+  const columns = new Set([
+    ...members.flatMap(({ nominal }) => nominal.map(({ taskId }) => taskId)),
+    ...saved.filter((shift) => shift.crewId === crew.id).flatMap((shift) => shift.tasks.map(({ taskId }) => taskId)),
+  ]);
+  const modelIds = [...new Set(assignments.flatMap(({ innerModelId, outerModelId }) => [innerModelId, outerModelId]))].filter((id) => id !== null);
+
+  return {
+    crew: { id: crew.id, name: crew.name, siteId: crew.siteId, siteName: site?.name ?? "", usualStart: crew.usualStart.slice(0, 5), usualLengthMin: crew.usualLengthMin, timeZone: site?.timeZone ?? "UTC" },
+    date,
+    today: localDate(new Date(), site?.timeZone ?? "UTC"),
+    settings: {
+      governingRuleSet: settings.governingRuleSet, ruleSetVersion: settings.ruleSetVersion, comparisonRuleSets: settings.comparisonRuleSets,
+      wearFromDb: settings.wearFromDb, creditsActivePart: settings.creditsActivePart, usesUncertainty: settings.usesUncertainty,
+    },
+    tasks: orderLikeNominal(tasks.map((task) => ({ ...task, isColumn: columns.has(task.id) })), members),
+    models: await modelsOn(modelIds, date),
+    instruments,
+    rows: members.map(({ nominal, isLoan, isAbsent, ...worker }): GridRow => {
+      const own = saved.find((shift) => shift.workerId === worker.id && shift.crewId === crew.id);
+      return {
+        worker, isLoan, isAbsent, nominal,
+        assignments: assignments.filter(({ workerId }) => workerId === worker.id).map(({ workerId: _, ...assignment }) => assignment),
+        lastWorn: lastWorn.get(worker.id) ?? {},
+        longestMin: longest.get(worker.id) ?? {},
+        saved: own ? presentSavedShift(own) : null,
+        otherShifts: saved.filter((shift) => shift.workerId === worker.id && shift !== own)
+          .map(({ shiftId, localStart, lengthMin }) => ({ shiftId, crewName: null, localStart, lengthMin })),
+        readings: readings.get(worker.id) ?? [],
+        lastShift: lastShifts.get(worker.id) ?? null,
+        figures: figures.get(worker.id) ?? null,
+      };
+    }),
+    notices: entry ? await entryNotices(entry) : null,
+  };
+}
+
+/** Workers of a crew on a date, with the nominal day of their job. */
+export async function crewMembers(crewId: string, date: string): Promise<MemberRow[]> {
+  return rows<MemberRow>(
+    `SELECT w.id, w.name, w.employee_number AS "employeeNumber", w.must_wear AS "mustWear", w.personal_target_db AS "personalTargetDb",
+       w.hired_on::text AS "hiredOn", w.left_on::text AS "leftOn", m.is_loan AS "isLoan",
+       EXISTS (SELECT 1 FROM absences a WHERE a.worker_id = w.id AND a.date = CAST(:date AS date)) AS "isAbsent",
+       coalesce((SELECT json_agg(json_build_object('taskId', j.task_id, 'durationMin', j.duration_min) ORDER BY j.position)
+                 FROM job_tasks j WHERE j.job_id = w.job_id), '[]') AS nominal
+     FROM crew_memberships m JOIN workers w ON w.id = m.worker_id
+     WHERE m.crew_id = :crewId AND m.valid @> CAST(:date AS date) AND (w.left_on IS NULL OR w.left_on >= CAST(:date AS date))
+     ORDER BY w.employee_number, w.id`,
+    { crewId, date },
+  );
+}
+
+interface TaskRow {
+  id: string;
+  name: string;
+  areaId: string | null;
+  zone: "none" | "single" | "double";
+  level: Parameters<typeof toTaskLevel>[0] | null;
+}
+
+/** A site's tasks with the level in force on a date. */
+export async function gridTasks(siteId: string, date: string): Promise<{ id: string; name: string; areaId: string | null; zone: TaskRow["zone"]; level: TaskLevel | null }[]> {
+  const found = await rows<TaskRow>(
+    `SELECT k.id, k.name, k.area_id AS "areaId", coalesce(a.zone, 'none') AS zone, (SELECT to_jsonb(x) FROM (
+        SELECT ${LEVEL_COLUMNS("l")} FROM task_levels l WHERE l.task_id = k.id AND l.effective_from <= :date
+        ORDER BY l.effective_from DESC, l.number DESC LIMIT 1) x) AS level
+     FROM tasks k LEFT JOIN areas a ON a.id = k.area_id WHERE k.site_id = :siteId AND NOT k.is_archived ORDER BY k.name`,
+    { siteId, date },
+  );
+  return found.map(({ level, ...task }) => ({ ...task, level: level ? toTaskLevel(level) : null }));
+}
+
+export interface AssignmentOn {
+  id: string;
+  workerId: string;
+  taskId: string | null;
+  areaId: string | null;
+  innerModelId: string;
+  outerModelId: string | null;
+}
+
+export async function assignmentsOn(workerIds: string, date: string): Promise<AssignmentOn[]> {
+  return rows<AssignmentOn>(
+    `SELECT id, worker_id AS "workerId", task_id AS "taskId", area_id AS "areaId", inner_model_id AS "innerModelId", outer_model_id AS "outerModelId"
+     FROM assignments WHERE worker_id = ANY (CAST(:ids AS uuid[])) AND valid @> CAST(:date AS date)`,
+    { ids: workerIds, date },
+  );
+}
+
+export async function modelsOn(modelIds: readonly string[], date: string) {
+  const found = modelIds.length === 0 ? [] : await rows<Parameters<typeof toProtector>[0]>(
+    `SELECT DISTINCT ON (m.id) ${PROTECTOR_COLUMNS} FROM protector_models m JOIN protector_model_revisions p ON p.model_id = m.id AND p.effective_from <= :date
+     WHERE m.id = ANY (CAST(:ids AS uuid[])) ORDER BY m.id, p.effective_from DESC, p.number DESC`,
+    { ids: `{${modelIds.join(",")}}`, date },
+  );
+  return found.map(toProtector);
+}
+
+export async function lastWearing(ids: string, date: string): Promise<Map<string, Record<string, number>>> {
+  const found = await rows<{ workerId: string; taskId: string; wornPct: number }>(
+    `SELECT DISTINCT ON (s.worker_id, t.task_id) s.worker_id AS "workerId", t.task_id AS "taskId", t.worn_pct AS "wornPct"
+     FROM shifts s JOIN shift_tasks t ON t.shift_revision_id = s.current_revision_id
+     WHERE s.worker_id = ANY (CAST(:ids AS uuid[])) AND s.date < CAST(:date AS date) AND s.date >= CAST(:date AS date) - 92 AND NOT s.is_void AND t.worn_pct IS NOT NULL
+     ORDER BY s.worker_id, t.task_id, s.date DESC`,
+    { ids, date },
+  );
+  return nest(found, ({ workerId }) => workerId, ({ taskId, wornPct }) => [taskId, wornPct]);
+}
+
+async function longestStays(ids: string, date: string): Promise<Map<string, Record<string, number>>> {
+  const found = await rows<{ workerId: string; taskId: string; longestMin: number }>(
+    `SELECT s.worker_id AS "workerId", t.task_id AS "taskId", max(t.duration_min) AS "longestMin"
+     FROM shifts s JOIN shift_tasks t ON t.shift_revision_id = s.current_revision_id
+     WHERE s.worker_id = ANY (CAST(:ids AS uuid[])) AND s.date < CAST(:date AS date) AND s.date >= CAST(:date AS date) - 366 AND NOT s.is_void
+     GROUP BY s.worker_id, t.task_id`,
+    { ids, date },
+  );
+  return nest(found, ({ workerId }) => workerId, ({ taskId, longestMin }) => [taskId, longestMin]);
+}
+
+function nest<Row>(found: readonly Row[], outer: (row: Row) => string, entry: (row: Row) => [string, number]): Map<string, Record<string, number>> {
+  const result = new Map<string, Record<string, number>>();
+  for (const one of found) {
+    const [key, value] = entry(one);
+    result.set(outer(one), { ...result.get(outer(one)), [key]: value });
+  }
+  return result;
+}
+
+interface LastShiftRow {
+  workerId: string;
+  date: string;
+  localStart: string;
+  lengthMin: number;
+  how: Unaccounted["how"];
+  quietDb: number | null;
+  tasks: ShiftTaskInput[];
+}
+
+async function lastShiftsBefore(ids: string, crewId: string, date: string): Promise<Map<string, NonNullable<GridRow["lastShift"]>>> {
+  const found = await rows<LastShiftRow>(
+    `SELECT w.id AS "workerId", s.date::text AS date, to_char(v.local_start, 'HH24:MI') AS "localStart", v.length_min AS "lengthMin",
+       v.unaccounted_how AS how, v.unaccounted_level_db AS "quietDb",
+       coalesce((SELECT json_agg(json_build_object('taskId', t.task_id, 'durationMin', t.duration_min, 'wornPct', t.worn_pct, 'wornIsShiftWide', t.worn_is_shift_wide) ORDER BY t.position)
+                 FROM shift_tasks t WHERE t.shift_revision_id = v.id), '[]') AS tasks
+     FROM unnest(CAST(:ids AS uuid[])) AS w(id)
+     JOIN LATERAL (SELECT * FROM shifts x WHERE x.worker_id = w.id AND x.date < CAST(:date AS date) AND x.crew_id = :crewId AND NOT x.is_void ORDER BY x.date DESC LIMIT 1) s ON TRUE
+     JOIN shift_revisions v ON v.id = s.current_revision_id`,
+    { ids, crewId, date },
+  );
+  return new Map(found.map(({ workerId, how, quietDb, ...shift }) => [
+    workerId,
+    { ...shift, unaccounted: how === "quiet" ? { how, levelDb: quietDb! } : { how } },
+  ]));
+}
+
+async function latestEntry(crewId: string, date: string): Promise<string | null> {
+  const found = await row<{ entryId: string }>(
+    `SELECT n.entry_id AS "entryId" FROM notices n JOIN notice_items i ON i.notice_id = n.id JOIN days d ON d.worker_id = i.worker_id AND d.date = i.date
+     WHERE d.crew_id = :crewId AND d.date = :date AND n.state <> 'withdrawn' ORDER BY n.created_at DESC LIMIT 1`,
+    { crewId, date },
+  );
+  return found?.entryId ?? null;
+}
+
+/** The order of the day's work where the jobs give one; other tasks by name behind. */
+function orderLikeNominal<T extends { id: string; name: string }>(tasks: T[], members: readonly MemberRow[]): T[] {
+  const place = new Map<string, number>();
+  for (const { nominal } of members) {
+    nominal.forEach(({ taskId }, index) => place.set(taskId, Math.min(place.get(taskId) ?? index, index)));
+  }
+  const last = Number.MAX_SAFE_INTEGER;
+  return tasks.toSorted((a, b) => (place.get(a.id) ?? last) - (place.get(b.id) ?? last) || a.name.localeCompare(b.name));
+}

@@ -1,0 +1,86 @@
+import type { z } from "zod";
+import { METHODS } from "../../shared/acoustics/methods";
+import type { ResultView } from "../../shared/schemas/result";
+import { row, rows } from "../lib/db";
+import { notFound } from "../lib/errors";
+import { type Actor, visible } from "../lib/policy";
+import { dayPolicy } from "../policies";
+import { DAY_FIGURES_COLUMNS, type DayFiguresRow, presentDayFigures } from "../presenters/day-figures";
+import { type DayRefs, hydrateDays, ruleSetsOf } from "./day-inputs";
+
+interface Found extends DayFiguresRow {
+  workerId: string;
+  workerName: string;
+  employeeNumber: string;
+  computedAt: Date;
+  isCurrent: boolean;
+  methodVersion: number;
+  refs: DayRefs;
+}
+
+const SELECT_RESULT = `SELECT ${DAY_FIGURES_COLUMNS("r")}, r.worker_id AS "workerId", w.name AS "workerName", w.employee_number AS "employeeNumber",
+    r.computed_at AS "computedAt", coalesce(d.current_result_id = r.id, FALSE) AS "isCurrent", r.method_version AS "methodVersion", r.refs
+  FROM day_results r JOIN workers w ON w.id = r.worker_id LEFT JOIN days d ON d.worker_id = r.worker_id AND d.date = r.date`;
+
+export async function resultOfDay(actor: Actor, workerId: string, date: string) {
+  return view(await row<Found>(
+    `${SELECT_RESULT} WHERE r.id = d.current_result_id AND r.worker_id = :workerId AND r.date = :date AND ${visible(dayPolicy, actor, "r")}`,
+    { workerId, date },
+  ));
+}
+
+export async function storedResult(actor: Actor, id: string) {
+  return view(await row<Found>(`${SELECT_RESULT} WHERE r.id = :id AND ${visible(dayPolicy, actor, "r")}`, { id }));
+}
+
+/** A result with its input built again from the revisions it names, and evaluated by the method version it names. */
+async function view(found: Found | null): Promise<z.input<typeof ResultView>> {
+  if (!found) throw notFound();
+  const { workerId, date, refs, origin } = found;
+  const isComputed = origin === "computed";
+  const { governing, comparison } = ruleSetsOf(refs);
+  const input = isComputed ? (await hydrateDays([{ workerId, date, refs }]))[0]! : null;
+  const method = METHODS[found.methodVersion];
+  if (isComputed && !method) throw new Error(`method version ${found.methodVersion} is not known`);
+  const shifts = !isComputed ? [] : await rows<z.input<typeof ResultView>["shifts"][number]>(
+    `SELECT v.shift_id AS id, to_char(v.local_start, 'HH24:MI') AS "localStart", v.length_min AS "lengthMin", v.number AS revision, u.name AS "authorName", v.reason
+     FROM shift_revisions v LEFT JOIN users u ON u.id = v.author_id WHERE v.id = ANY (CAST(:ids AS uuid[])) ORDER BY v.local_start`,
+    { ids: `{${refs.shifts.map(({ revisionId }) => revisionId).join(",")}}` },
+  );
+  const levelIds = isComputed ? refs.shifts.flatMap(({ tasks }) => tasks.flatMap(({ levelId }) => (levelId ? [levelId] : []))) : [];
+  const modelIds = isComputed ? refs.shifts.flatMap(({ tasks }) => tasks.flatMap(({ use }) => [use?.inner, use?.outer].filter((id): id is string => Boolean(id)))) : [];
+  const sources = !isComputed ? [] : await rows<{ id: string; label: string; note: string | null }>(
+    `SELECT l.id, k.name || ', ' || l.effective_from AS label, nullif(l.source_note, '') AS note FROM task_levels l JOIN tasks k ON k.id = l.task_id WHERE l.id = ANY (CAST(:levelIds AS uuid[]))
+     UNION ALL SELECT p.id, m.name || ', ' || p.number, p.reason FROM protector_model_revisions p JOIN protector_models m ON m.id = p.model_id WHERE p.id = ANY (CAST(:modelIds AS uuid[]))`,
+    { levelIds: `{${levelIds.join(",")}}`, modelIds: `{${modelIds.join(",")}}` },
+  );
+  const findings = await rows<{ id: string; kind: string; state: string }>(
+    "SELECT f.id, f.kind, f.state FROM finding_evidence e JOIN findings f ON f.id = e.finding_id WHERE e.worker_id = :workerId AND e.date = :date ORDER BY f.opened_at",
+    { workerId, date },
+  );
+  const earlier = await rows<{ id: string; computedAt: Date; isCurrent: boolean; governingRuleSet: string; ruleSetVersion: number; methodVersion: number }>(
+    `SELECT r.id, r.computed_at AS "computedAt", coalesce(d.current_result_id = r.id, FALSE) AS "isCurrent", r.governing_rule_set AS "governingRuleSet",
+       r.governing_version AS "ruleSetVersion", r.method_version AS "methodVersion"
+     FROM day_results r LEFT JOIN days d ON d.worker_id = r.worker_id AND d.date = r.date
+     WHERE r.worker_id = :workerId AND r.date = :date AND r.id <> :id ORDER BY r.computed_at DESC LIMIT 20`,
+    { workerId, date, id: found.resultId },
+  );
+  return {
+    id: found.resultId,
+    worker: { id: workerId, name: found.workerName, employeeNumber: found.employeeNumber },
+    date,
+    shifts,
+    figures: presentDayFigures(found),
+    origin,
+    computedAt: found.computedAt.toISOString(),
+    isCurrent: found.isCurrent,
+    methodVersion: found.methodVersion,
+    governing: { key: governing.key, version: governing.version },
+    comparison: comparison.map(({ key, version }) => ({ key, version })),
+    input,
+    evaluation: input && method ? method.evaluateDay(input, governing, comparison) : null,
+    sources: Object.fromEntries(sources.map(({ id, label, note }) => [id, { label, note }])),
+    findings,
+    earlier: earlier.map((one) => ({ ...one, computedAt: one.computedAt.toISOString() })),
+  };
+}

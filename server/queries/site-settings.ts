@@ -1,0 +1,30 @@
+import { ruleSetInForce } from "../../shared/rule-sets";
+import { row } from "../lib/db";
+import { AppError } from "../lib/errors";
+
+export interface SettingsInForce {
+  id: string;
+  governingRuleSet: string;
+  comparisonRuleSets: string[];
+  wearFromDb: number;
+  creditsActivePart: boolean;
+  usesUncertainty: boolean;
+  ruleSetVersion: number;
+}
+
+/**
+ * What a site's verdicts rest on, on a date.
+ *
+ * @throws AppError not-computed, where the site had chosen no rule set yet.
+ */
+export async function settingsInForce(siteId: string, date: string): Promise<SettingsInForce> {
+  const found = await row<Omit<SettingsInForce, "ruleSetVersion">>(
+    `SELECT id, governing_rule_set AS "governingRuleSet", comparison_rule_sets AS "comparisonRuleSets", wear_from_db AS "wearFromDb",
+       credits_active_part AS "creditsActivePart", uses_uncertainty AS "usesUncertainty"
+     FROM site_settings WHERE site_id = :siteId AND effective_from <= :date ORDER BY effective_from DESC, number DESC LIMIT 1`,
+    { siteId, date },
+  );
+  const ruleSet = found ? ruleSetInForce(found.governingRuleSet, date) : undefined;
+  if (!found || !ruleSet) throw new AppError("not-computed", 409);
+  return { ...found, ruleSetVersion: ruleSet.version };
+}

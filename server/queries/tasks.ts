@@ -1,0 +1,64 @@
+import type { TaskLevelView, TaskView } from "../../shared/schemas/task";
+import { row, rows } from "../lib/db";
+import { type Actor, visible } from "../lib/policy";
+import { programmePolicy } from "../policies";
+import type { z } from "zod";
+
+type LevelView = z.infer<typeof TaskLevelView>;
+export type TaskRow = Omit<TaskView, "can" | "level">;
+export type TaskLevelRow = Omit<LevelView, "peak" | "createdAt"> & {
+  taskId: string;
+  isInForce: boolean;
+  peakDb: number | null;
+  peakWeighting: "A" | "C" | "Z" | null;
+  createdAt: Date;
+};
+
+export async function listTasks(
+  actor: Actor,
+  { id = null, siteId = null }: { id?: string | null; siteId?: string | null },
+): Promise<TaskRow[]> {
+  return rows<TaskRow>(
+    `SELECT t.id, t.site_id AS "siteId", t.area_id AS "areaId", t.name, t.is_archived AS "isArchived", t.revision,
+       a.name AS "areaName", coalesce(a.zone, 'none') AS zone
+     FROM tasks t LEFT JOIN areas a ON a.id = t.area_id WHERE ${visible(programmePolicy, actor, "t")}
+       AND (CAST(:id AS uuid) IS NULL OR t.id = :id) AND (CAST(:siteId AS uuid) IS NULL OR t.site_id = :siteId)
+     ORDER BY t.is_archived, t.name, t.id`,
+    { id, siteId },
+  );
+}
+
+/** Levels of these tasks, the latest first: all, or only those in force on their site's today. */
+export async function listTaskLevels(
+  taskIds: readonly string[],
+  which: "all" | "in-force",
+): Promise<TaskLevelRow[]> {
+  if (taskIds.length === 0) return [];
+  return rows<TaskLevelRow>(
+    `SELECT * FROM (
+       SELECT l.id, l.task_id AS "taskId", l.number, l.effective_from::text AS "effectiveFrom", l.metric, l.level_db AS "levelDb",
+         l.lc_minus_la_db AS "lcMinusLaDb", l.octave_bands_db AS "octaveBandsDb", l.las_max_db AS "lasMaxDb", l.peak_db AS "peakDb",
+         l.peak_weighting AS "peakWeighting", l.samples_db AS "samplesDb", l.instrument_class AS instrument, l.grade,
+         l.source_note AS "sourceNote", l.reason, u.name AS "authorName", l.created_at AS "createdAt",
+         l.id IS NOT DISTINCT FROM (
+           SELECT f.id FROM task_levels f
+           WHERE f.task_id = l.task_id AND f.effective_from <= (now() AT TIME ZONE s.time_zone)::date
+           ORDER BY f.effective_from DESC, f.number DESC LIMIT 1) AS "isInForce"
+       FROM task_levels l JOIN tasks t ON t.id = l.task_id JOIN sites s ON s.id = t.site_id LEFT JOIN users u ON u.id = l.author_id
+       WHERE l.task_id IN (:taskIds)) level
+     WHERE :all OR level."isInForce"
+     ORDER BY level."effectiveFrom" DESC, level.number DESC`,
+    { taskIds, all: which === "all" },
+  );
+}
+
+/** How many shifts, as they stand, name the task. */
+export async function countShiftsWithTask(taskId: string): Promise<number> {
+  const found = await row<{ count: number }>(
+    `SELECT count(*)::int AS count FROM shift_tasks t
+     JOIN shifts s ON s.id = t.shift_id AND s.current_revision_id = t.shift_revision_id AND NOT s.is_void
+     WHERE t.task_id = :taskId`,
+    { taskId },
+  );
+  return found?.count ?? 0;
+}

@@ -1,0 +1,65 @@
+import type { z } from "zod";
+import type { WaitingView } from "../../shared/schemas/waiting";
+import { localDate } from "../../shared/time/zone";
+import { rows } from "../lib/db";
+import { type Actor, visible } from "../lib/policy";
+import { noticePolicy, programmePolicy, sitePolicy, crewPolicy } from "../policies";
+import { findNotices, summarize } from "./entry-notices";
+import { listFindings } from "./finding-view";
+
+interface CrewRow {
+  id: string;
+  name: string;
+  siteId: string;
+  timeZone: string;
+  date: string;
+  start: string;
+  lengthMin: number;
+  members: number;
+  saved: number;
+  absent: number;
+}
+
+/** The safety officer's start page: what needs a person, how far the crews' days are entered, what goes out, what is due. */
+export async function waitingFor(actor: Actor, siteId: string | undefined): Promise<z.input<typeof WaitingView>> {
+  const sites = await rows<{ id: string; timeZone: string }>(
+    `SELECT s.id, s.time_zone AS "timeZone" FROM sites s WHERE ${visible(sitePolicy, actor, "s")} ${siteId ? "AND s.id = :siteId" : ""}`,
+    { siteId },
+  );
+  const days = sites.map(({ id, timeZone }) => ({ siteId: id, date: localDate(new Date(), timeZone) }));
+  const crews = await rows<CrewRow>(
+    `SELECT c.id, c.name, c.site_id AS "siteId", s.time_zone AS "timeZone", x.date::text AS date, to_char(c.usual_start, 'HH24:MI') AS start, c.usual_length_min AS "lengthMin",
+       (SELECT count(*)::int FROM crew_memberships m JOIN workers w ON w.id = m.worker_id
+        WHERE m.crew_id = c.id AND m.valid @> x.date AND (w.left_on IS NULL OR w.left_on >= x.date)) AS members,
+       (SELECT count(*)::int FROM shifts f WHERE f.crew_id = c.id AND f.date = x.date AND NOT f.is_void) AS saved,
+       (SELECT count(*)::int FROM absences a JOIN crew_memberships m ON m.worker_id = a.worker_id AND m.crew_id = c.id AND m.valid @> x.date WHERE a.date = x.date) AS absent
+     FROM crews c JOIN sites s ON s.id = c.site_id JOIN jsonb_to_recordset(CAST(:days AS jsonb)) AS x("siteId" uuid, date date) ON x."siteId" = c.site_id
+     WHERE NOT c.is_archived AND ${visible(crewPolicy, actor, "c")} ORDER BY c.usual_start, c.name`,
+    { days: JSON.stringify(days) },
+  );
+  const findings = await listFindings(actor, { state: "open", siteId, limit: 100 });
+  const ofSite = siteId ? "n.site_id = :siteId AND" : "";
+  const outgoing = await findNotices(`${ofSite} n.state IN ('waiting', 'held') AND n.last_error IS NULL AND ${visible(noticePolicy, actor, "n")}`, { siteId });
+  const byEntry = new Map<string, typeof outgoing>();
+  for (const notice of outgoing) byEntry.set(notice.entryId, [...(byEntry.get(notice.entryId) ?? []), notice]);
+  const troubled = await findNotices(
+    `${ofSite} (n.state IN ('failed', 'possibly-sent') OR (n.state = 'waiting' AND n.last_error IS NOT NULL)) AND n.created_at > now() - interval '30 days' AND ${visible(noticePolicy, actor, "n")}`,
+    { siteId },
+  );
+  const due = await rows<{ id: string; name: string; dueOn: string }>(
+    `SELECT i.id, i.name, i.calibration_due_on::text AS "dueOn" FROM instruments i
+     WHERE NOT i.is_archived AND i.calibration_due_on <= current_date + 14 AND ${visible(programmePolicy, actor, "i")} ${siteId ? "AND i.site_id = :siteId" : ""}
+     ORDER BY i.calibration_due_on, i.name LIMIT 20`,
+    { siteId },
+  );
+  return {
+    today: days[0]?.date ?? localDate(new Date(), "UTC"),
+    crews,
+    findings: findings.rows.filter(({ state }) => state !== "done"),
+    next: findings.next,
+    toBeChecked: findings.rows.filter(({ state }) => state === "done"),
+    outgoing: [...byEntry].map(([entryId, notices]) => summarize(entryId, notices)),
+    troubled,
+    calibrationsDue: due,
+  };
+}

@@ -1,0 +1,22 @@
+import type { z } from "zod";
+import type { HistoryFilter, HistoryPage } from "../../shared/schemas/worker";
+import { decodeCursor, pageFrom } from "../lib/cursor";
+import { rows } from "../lib/db";
+import { type Actor, visible } from "../lib/policy";
+import { dayPolicy } from "../policies";
+import { DAY_FIGURES_COLUMNS, type DayFiguresRow, presentDayFigures } from "../presenters/day-figures";
+
+/** A worker's days with their current results, latest first, as far as the actor may see them. */
+export async function workerHistory(actor: Actor, workerId: string, filter: z.output<typeof HistoryFilter>): Promise<z.input<typeof HistoryPage>> {
+  const before = decodeCursor(filter.cursor, 1)?.[0];
+  const conditions = ["d.worker_id = :workerId", visible(dayPolicy, actor, "d")];
+  if (filter.from) conditions.push("d.date >= :from");
+  if (filter.to) conditions.push("d.date <= :to");
+  if (before) conditions.push("d.date < CAST(:before AS date)");
+  const found = await rows<DayFiguresRow & { shiftMin: number; isStale: boolean }>(
+    `SELECT ${DAY_FIGURES_COLUMNS("r")}, r.shift_min AS "shiftMin", d.is_stale AS "isStale"
+     FROM days d JOIN day_results r ON r.id = d.current_result_id WHERE ${conditions.join(" AND ")} ORDER BY d.date DESC LIMIT :limit`,
+    { workerId, from: filter.from, to: filter.to, before, limit: filter.limit + 1 },
+  );
+  return pageFrom(found.map((row) => ({ ...presentDayFigures(row), shiftMin: row.shiftMin, isStale: row.isStale })), filter.limit, ({ date }) => [date]);
+}

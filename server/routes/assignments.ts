@@ -1,0 +1,95 @@
+import { literal, Op } from "sequelize";
+import { IdParams } from "../../shared/schemas/common";
+import { AssignmentEnd, AssignmentInput, AssignmentList, AssignmentView, ManyAssignmentsInput } from "../../shared/schemas/worker";
+import { assignProtector } from "../commands/assign-protector";
+import { endAssignment } from "../commands/end-assignment";
+import { endpoint } from "../lib/endpoint";
+import { notFound } from "../lib/errors";
+import { only } from "../lib/only";
+import { type Actor, authorize, findVisible, visible } from "../lib/policy";
+import { requireRevision } from "../lib/revision";
+import { Assignment } from "../models/protector";
+import { Worker } from "../models/worker";
+import { assignmentPolicy, may, workerPolicy } from "../policies";
+import { presentAssignment } from "../presenters/assignment";
+import { listAssignments } from "../queries/assignments";
+
+const view = async (actor: Actor, id: string) => presentAssignment(only(await listAssignments(actor, { ids: [id] })));
+
+/** These workers, locked in one order whoever asks, in the order of the request. */
+async function workersToAssign(actor: Actor, ids: readonly string[]): Promise<Worker[]> {
+  const condition = literal(visible(workerPolicy, actor, `"${Worker.name}"`));
+  const found = await Worker.findAll({ where: { id: [...ids], [Op.and]: [condition] }, order: [["id", "ASC"]], lock: true });
+  const byId = new Map(found.map((worker) => [worker.id, worker]));
+  return ids.map((id) => {
+    const worker = byId.get(id);
+    if (!worker) throw notFound();
+    authorize(workerPolicy, actor, "assign", worker);
+    return worker;
+  });
+}
+
+export function defineAssignmentRoutes(): void {
+  endpoint.get(
+    "/workers/:id/assignments",
+    { summary: "A worker's protectors by use and date", may: may.readDays, params: IdParams, reply: AssignmentList },
+    async ({ actor, params }) => {
+      const worker = await findVisible(Worker, workerPolicy, params.id, actor);
+      return { rows: (await listAssignments(actor, { workerId: worker.id })).map(presentAssignment) };
+    },
+  );
+
+  endpoint.post(
+    "/workers/:id/assignments",
+    {
+      summary: "Assign a protector; an open assignment of the same use ends the day before",
+      may: may.officer,
+      params: IdParams,
+      body: AssignmentInput,
+      reply: AssignmentView,
+    },
+    async ({ actor, params, body }) => {
+      const workers = await workersToAssign(actor, [params.id]);
+      const ids = await assignProtector(actor, workers, body, { field: (name) => [name], worker: (_, name) => [name] });
+      return view(actor, only(ids));
+    },
+  );
+
+  endpoint.post(
+    "/assignments/many",
+    {
+      summary: "The same assignment for many workers: all of them or none",
+      may: may.officer,
+      body: ManyAssignmentsInput,
+      reply: AssignmentList,
+    },
+    async ({ actor, body }) => {
+      const workers = await workersToAssign(actor, body.workerIds);
+      const ids = await assignProtector(actor, workers, body.assignment, {
+        field: (name) => ["assignment", name],
+        worker: (index) => ["workerIds", index],
+      });
+      return { rows: (await listAssignments(actor, { ids })).map(presentAssignment) };
+    },
+  );
+
+  endpoint.patch(
+    "/assignments/:id",
+    {
+      summary: "Last day of an assignment",
+      may: may.officer,
+      params: IdParams,
+      body: AssignmentEnd,
+      reply: AssignmentView,
+      needsRevision: true,
+    },
+    async ({ actor, params, body, ifMatch }) => {
+      const assignment = await findVisible(Assignment, assignmentPolicy, params.id, actor, { lock: true });
+      const worker = await findVisible(Worker, workerPolicy, assignment.workerId, actor);
+      authorize(assignmentPolicy, actor, "change", worker);
+      await requireRevision(assignment, ifMatch, () => view(actor, assignment.id));
+      await endAssignment(actor, await view(actor, assignment.id), body.toDate);
+      return view(actor, assignment.id);
+    },
+  );
+}

@@ -1,0 +1,43 @@
+import type { Config } from "../config";
+import { defineEvaluateRoutes } from "./evaluate";
+import { defineAreaRoutes } from "./areas";
+import { defineAssignmentRoutes } from "./assignments";
+import { defineAuditRoutes } from "./audit-events";
+import { defineCrewRoutes } from "./crews";
+import { defineDayEntryRoutes } from "./day-entry";
+import { defineDayRoutes } from "./days";
+import { defineFindingRoutes } from "./findings";
+import { defineInstrumentRoutes } from "./instruments";
+import { defineJobRoutes } from "./jobs";
+import { defineNoticeRoutes } from "./notices";
+import { defineProtectorRoutes } from "./protectors";
+import { defineRuleSetRoutes } from "./rule-sets";
+import { defineRunRoutes } from "./runs";
+import { defineSearchRoutes } from "./search";
+import { defineSiteRoutes } from "./sites";
+import { defineTaskRoutes } from "./tasks";
+import { defineUserRoutes } from "./users";
+import { defineWorkerRoutes } from "./workers";
+
+/** Every resource's routes, declared once per process. */
+export function defineRoutes(config: Config<"web">): void {
+  defineEvaluateRoutes();
+  defineDayEntryRoutes();
+  defineDayRoutes();
+  defineFindingRoutes();
+  defineNoticeRoutes(config);
+  defineRunRoutes();
+  defineAreaRoutes();
+  defineAssignmentRoutes();
+  defineAuditRoutes();
+  defineCrewRoutes();
+  defineInstrumentRoutes();
+  defineJobRoutes();
+  defineProtectorRoutes();
+  defineRuleSetRoutes();
+  defineSearchRoutes();
+  defineSiteRoutes();
+  defineTaskRoutes();
+  defineUserRoutes();
+  defineWorkerRoutes();
+}

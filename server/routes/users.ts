@@ -1,0 +1,82 @@
+import { IdParams } from "../../shared/schemas/common";
+import { OwnSettings, UserChange, UserInput, UserList, UserView } from "../../shared/schemas/user";
+import { changeUser } from "../commands/change-user";
+import { createUser } from "../commands/create-user";
+import { revokeUser } from "../commands/revoke-user";
+import { setOwnLanguage } from "../commands/set-own-language";
+import { endpoint } from "../lib/endpoint";
+import { AppError } from "../lib/errors";
+import { only } from "../lib/only";
+import { type Actor, authorize, findVisible } from "../lib/policy";
+import { requireRevision } from "../lib/revision";
+import { User } from "../models/user";
+import { may, userPolicy } from "../policies";
+import { presentUser } from "../presenters/user";
+import { listUsers } from "../queries/users";
+
+const view = async (actor: Actor, id: string) => presentUser(actor, only(await listUsers(actor, id)));
+
+export function defineUserRoutes(): void {
+  endpoint.get(
+    "/users",
+    { summary: "People who may sign in, and their roles", may: may.administer, reply: UserList },
+    async ({ actor }) => ({ rows: (await listUsers(actor)).map((user) => presentUser(actor, user)) }),
+  );
+
+  endpoint.post(
+    "/users",
+    { summary: "Grant somebody access", may: may.administer, body: UserInput, reply: UserView },
+    async ({ actor, body }) => {
+      const user = await createUser(actor, body);
+      return view(actor, user.id);
+    },
+  );
+
+  endpoint.put(
+    "/users/:id",
+    {
+      summary: "Change a person's name, worker and roles; roles are replaced as a whole",
+      may: may.administer,
+      params: IdParams,
+      body: UserChange,
+      reply: UserView,
+      needsRevision: true,
+    },
+    async ({ actor, params, body, ifMatch }) => {
+      const user = await findVisible(User, userPolicy, params.id, actor, { lock: true });
+      authorize(userPolicy, actor, "change", user);
+      await requireRevision(user, ifMatch, () => view(actor, user.id));
+      await changeUser(actor, user, body);
+      return view(actor, user.id);
+    },
+  );
+
+  endpoint.post(
+    "/users/:id/revoke",
+    {
+      summary: "End somebody's access at their next request",
+      may: may.administer,
+      params: IdParams,
+      reply: UserView,
+      status: 200,
+      needsRevision: true,
+    },
+    async ({ actor, params, ifMatch }) => {
+      const user = await findVisible(User, userPolicy, params.id, actor, { lock: true });
+      if (user.id === actor.userId) throw new AppError("own-grant", 403);
+      authorize(userPolicy, actor, "revoke", user);
+      await requireRevision(user, ifMatch, () => view(actor, user.id));
+      await revokeUser(actor, user);
+      return view(actor, user.id);
+    },
+  );
+
+  endpoint.put(
+    "/me/settings",
+    { summary: "One's own language", may: "signed-in", body: OwnSettings, reply: OwnSettings },
+    async ({ actor, body }) => {
+      await setOwnLanguage(actor, body.language);
+      return body;
+    },
+  );
+}

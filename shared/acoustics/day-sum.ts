@@ -1,0 +1,193 @@
+import {
+  type ExchangeLaw,
+  isLaeq,
+  isOwnSetting,
+  leastWeight,
+  mostWeight,
+  servesExactly,
+  weightOf,
+} from "./exchange-law";
+import type { CriterionResult, DayInput, ReadingInput, Reason, ShiftInput } from "./types";
+
+/** Less than this of a shift is the machine's noise and not time. */
+const NO_TIME_MIN = 1e-9;
+
+/** Minutes times weight under a law: what is certain, what is possible, and what stands between for want of a record. */
+export interface Sum {
+  readonly least: number;
+  readonly most: number;
+  readonly missing: Reason | null;
+}
+
+export interface DaySum extends Sum {
+  readonly basis: CriterionResult["basis"];
+  /** Some shift rests on a reading under the law's own settings. */
+  readonly hasReading: boolean;
+  /** The tasks alone, beside the readings. */
+  readonly tasks: Sum;
+}
+
+export function accountedMin(shift: ShiftInput): number {
+  let sum = 0;
+  for (const task of shift.tasks) sum += task.durationMin;
+  return sum;
+}
+
+/** Time of a shift that no task says anything about, minutes. */
+export function unaccountedMin(shift: ShiftInput): number {
+  const rest = shift.lengthMin - accountedMin(shift);
+  return rest > NO_TIME_MIN ? rest : 0;
+}
+
+/** By how much the tasks stand for more time than their own: the rest was like them. */
+export function likenessFactor(shift: ShiftInput): number {
+  if (shift.unaccounted.how !== "like-the-rest") return 1;
+  const accounted = accountedMin(shift);
+  return accounted > 0 && shift.lengthMin > accounted ? shift.lengthMin / accounted : 1;
+}
+
+/** Why a shift's time is not wholly known; null where it is. */
+export function missingTime(shift: ShiftInput): "no-tasks" | "time-unknown" | null {
+  const { how } = shift.unaccounted;
+  if (how === "quiet" || unaccountedMin(shift) === 0) return null;
+  if (accountedMin(shift) === 0) return "no-tasks";
+  return how === "unknown" ? "time-unknown" : null;
+}
+
+/** The tasks of a shift, under a law. */
+function sumTasks(shift: ShiftInput, law: ExchangeLaw): Sum {
+  let least = 0;
+  let most = 0;
+  let missing: Reason | null = missingTime(shift);
+  for (const { durationMin, level } of shift.tasks) {
+    if (durationMin === 0) continue;
+    if (level === null) {
+      missing ??= "level-missing";
+      continue;
+    }
+    const { metric, levelDb } = level;
+    const atLeast = leastWeight(metric, levelDb, law);
+    least += durationMin * atLeast;
+    most += durationMin * (servesExactly(metric, law) ? atLeast : mostWeight(metric, levelDb, law));
+  }
+  const factor = likenessFactor(shift);
+  least *= factor;
+  most *= factor;
+  if (shift.unaccounted.how === "quiet") {
+    const quiet =
+      unaccountedMin(shift) * leastWeight({ kind: "steady" }, shift.unaccounted.levelDb, law);
+    least += quiet;
+    most += quiet;
+  }
+  return { least, most: missing === null ? most : Number.POSITIVE_INFINITY, missing };
+}
+
+/** The reading that governs a shift under a law: under its own settings, and over the shift or projected to it. */
+export function governingReading(shift: ShiftInput, law: ExchangeLaw): ReadingInput | undefined {
+  let best: ReadingInput | undefined;
+  for (const reading of shift.readings) {
+    if (reading.covers === "part" || !isOwnSetting(reading.settings, law)) continue;
+    if (reading.dosePct === null && reading.averageDb === null) continue;
+    if (!best || isBetter(reading, best)) best = reading;
+  }
+  return best;
+}
+
+function isBetter(reading: ReadingInput, other: ReadingInput): boolean {
+  if (reading.covers !== other.covers) return reading.covers === "shift";
+  return reading.durationMin > other.durationMin;
+}
+
+/** What a reading under the law's own settings adds up to over its shift. */
+export function sumReading(reading: ReadingInput, shift: ShiftInput, law: ExchangeLaw): number {
+  const { dosePct, averageDb, settings, durationMin } = reading;
+  // Relative to the criterion level where a table is the rule, as are the table's own weights.
+  const zeroDb = law.table ? law.criterionLevelDb : 0;
+  const fromDose =
+    dosePct === null
+      ? null
+      : (dosePct / 100) * 480 * weightOf(settings.criterionLevelDb - zeroDb, law);
+  const fromAverage = averageDb === null ? null : durationMin * weightOf(averageDb - zeroDb, law);
+  // The number that the law is written in comes first: a level for an energy law, a dose for the others.
+  const sum = law.isEnergy ? (fromAverage ?? fromDose) : (fromDose ?? fromAverage);
+  return sum! * projection(reading, shift);
+}
+
+function projection(reading: ReadingInput, shift: ShiftInput): number {
+  return reading.covers === "projected" ? shift.lengthMin / reading.durationMin : 1;
+}
+
+/** What a shift's readings under other settings prove, where the tasks leave the matter open. */
+function narrow(tasks: Sum, shift: ShiftInput, law: ExchangeLaw): Sum {
+  let { least, most, missing } = tasks;
+  for (const reading of shift.readings) {
+    const averageDb = reading.averageDb ?? averageOfDose(reading);
+    if (averageDb === null) continue;
+    const minutes = reading.durationMin * projection(reading, shift);
+    const metric = isLaeq(reading.settings)
+      ? ({ kind: "laeq" } as const)
+      : ({ kind: "lavg", settings: reading.settings } as const);
+    if (reading.settings.weighting !== "A") continue;
+    least = Math.max(least, minutes * leastWeight(metric, averageDb, law));
+    if (reading.covers === "part") continue;
+    const atMost = minutes * mostWeight(metric, averageDb, law);
+    if (atMost >= most) continue;
+    most = atMost;
+    missing = null;
+  }
+  // Where tasks and readings contradict each other, the worker's own reading is believed.
+  return { least, most: Math.max(least, most), missing };
+}
+
+/** LAVG that a dose stands for over the reading's run time, dB; null for no dose at all. */
+function averageOfDose({ dosePct, settings, durationMin }: ReadingInput): number | null {
+  if (dosePct === null || dosePct === 0) return null;
+  const meanDose = (dosePct / 100) * (480 / durationMin);
+  const factor = isLaeq(settings) ? 10 : settings.exchangeRateDb / Math.log10(2);
+  return settings.criterionLevelDb + factor * Math.log10(meanDose);
+}
+
+/** A worker's whole day under a law, all shifts added up. */
+export function sumDay(day: DayInput, law: ExchangeLaw): DaySum {
+  let least = 0;
+  let most = 0;
+  let tasksLeast = 0;
+  let tasksMost = 0;
+  let missing: Reason | null = day.shifts.length === 0 ? "no-tasks" : null;
+  let tasksMissing: Reason | null = missing;
+  let readings = 0;
+  let projected = 0;
+  for (const shift of day.shifts) {
+    const tasks = sumTasks(shift, law);
+    tasksLeast += tasks.least;
+    tasksMost += tasks.most;
+    tasksMissing ??= tasks.missing;
+    const reading = shift.readings.length > 0 ? governingReading(shift, law) : undefined;
+    if (reading) {
+      const sum = sumReading(reading, shift, law);
+      least += sum;
+      most += sum;
+      readings++;
+      if (reading.covers === "projected") projected++;
+      continue;
+    }
+    const isOpen = shift.readings.length > 0 && tasks.least < tasks.most;
+    const shiftSum = isOpen ? narrow(tasks, shift, law) : tasks;
+    least += shiftSum.least;
+    most += shiftSum.most;
+    missing ??= shiftSum.missing;
+  }
+  return {
+    least,
+    most: day.shifts.length === 0 ? Number.POSITIVE_INFINITY : most,
+    missing,
+    basis:
+      readings === 0 || readings < day.shifts.length
+        ? "tasks"
+        : projected > 0
+          ? "projected-reading"
+          : "reading",
+    hasReading: readings > 0,
+    tasks: { least: tasksLeast, most: tasksMost, missing: tasksMissing },
+  };
+}

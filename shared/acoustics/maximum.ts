@@ -1,0 +1,137 @@
+import { missingTime } from "./day-sum";
+import { countsAsWorn } from "./protection/at-ear";
+import type {
+  Criterion,
+  CriterionResult,
+  DayInput,
+  PeakLevel,
+  Reason,
+  ShiftInput,
+  TaskLevel,
+} from "./types";
+
+/** The greatest level of a day, between what is certain and what is possible. */
+export interface MaximumBounds {
+  readonly leastDb: number;
+  readonly mostDb: number;
+  readonly basis: CriterionResult["basis"];
+  readonly reason: Reason | null;
+}
+
+/** What one source says about a maximum; null: nothing. */
+interface Stated {
+  readonly lasMaxDb: number | null;
+  readonly peak: PeakLevel | null;
+}
+
+/**
+ * The day's slow maximum or peak for a criterion. Maxima are never averaged: the greatest of all counts. A reading
+ * over the shift governs it; a part of it still proves what it shows. A mean level proves that the slow maximum is
+ * at least as much, and a slow maximum that an A-weighted peak is.
+ *
+ * At the ear no protector is credited: a maximum in a task in which one is worn is not assessed unless it is under
+ * the value without it.
+ *
+ * @source osha-1910.95 (a), (b): the ceiling on slow, the peak apart
+ * @source eu-2003-10-ec art. 2(a)
+ */
+export function dayMaximum(day: DayInput, criterion: Criterion): MaximumBounds {
+  const isAtEar = criterion.judged === "at-the-ear";
+  let leastDb = Number.NEGATIVE_INFINITY;
+  let mostDb = Number.NEGATIVE_INFINITY;
+  let reason: Reason | null = day.shifts.length === 0 ? "no-tasks" : null;
+  let byReading = 0;
+  let byProjected = 0;
+
+  const take = (atLeastDb: number, atMostDb: number, isWorn: boolean, why: Reason | null) => {
+    // A protector may take anything off, but adds nothing.
+    if (!isWorn) leastDb = Math.max(leastDb, atLeastDb);
+    mostDb = Math.max(mostDb, atMostDb);
+    reason ??= why ?? (isWorn && atMostDb > criterion.value ? "peak-at-ear-not-assessed" : null);
+  };
+
+  for (const shift of day.shifts) {
+    const isWorn = isAtEar && shift.tasks.some((task) => isWornAtAll(task, day));
+    let coveringDb = Number.NEGATIVE_INFINITY;
+    let isProjected = false;
+    for (const reading of shift.readings) {
+      const statedDb = statedMaximumDb(reading, criterion);
+      if (statedDb === null) continue;
+      take(statedDb, statedDb, isWorn, null);
+      if (reading.covers === "part") continue;
+      coveringDb = Math.max(coveringDb, statedDb);
+      isProjected ||= reading.covers === "projected";
+    }
+    if (coveringDb > Number.NEGATIVE_INFINITY) {
+      byReading++;
+      if (isProjected) byProjected++;
+      continue;
+    }
+    takeTasks(shift, day, criterion, take);
+  }
+  return {
+    leastDb,
+    mostDb: day.shifts.length === 0 ? Number.POSITIVE_INFINITY : mostDb,
+    basis:
+      byReading === 0 || byReading < day.shifts.length
+        ? "tasks"
+        : byProjected > 0
+          ? "projected-reading"
+          : "reading",
+    reason,
+  };
+}
+
+type Take = (atLeastDb: number, atMostDb: number, isWorn: boolean, why: Reason | null) => void;
+
+function takeTasks(shift: ShiftInput, day: DayInput, criterion: Criterion, take: Take): void {
+  const unlimited = Number.POSITIVE_INFINITY;
+  for (const task of shift.tasks) {
+    if (task.durationMin === 0) continue;
+    const isWorn = criterion.judged === "at-the-ear" && isWornAtAll(task, day);
+    if (task.level === null) {
+      take(Number.NEGATIVE_INFINITY, unlimited, isWorn, "level-missing");
+      continue;
+    }
+    const statedDb = statedMaximumDb(withSteady(task.level), criterion);
+    if (statedDb !== null) take(statedDb, statedDb, isWorn, null);
+    else take(provenDb(task.level, criterion), unlimited, isWorn, whyNot(task.level, criterion));
+  }
+  // Time said to be quiet has its level for a maximum too.
+  if (shift.unaccounted.how === "quiet" && criterion.quantity === "slow-maximum") {
+    take(shift.unaccounted.levelDb, shift.unaccounted.levelDb, false, null);
+  }
+  const missing = missingTime(shift);
+  if (missing !== null) take(Number.NEGATIVE_INFINITY, unlimited, false, missing);
+}
+
+function isWornAtAll(task: ShiftInput["tasks"][number], day: DayInput): boolean {
+  return task.wornPct !== 0 && countsAsWorn(task, day);
+}
+
+/** A level read on slow that hardly moves is its own slow maximum. */
+function withSteady(level: TaskLevel): Stated {
+  if (level.lasMaxDb !== null || level.metric.kind !== "steady") return level;
+  return { lasMaxDb: level.levelDb, peak: level.peak };
+}
+
+function statedMaximumDb({ lasMaxDb, peak }: Stated, criterion: Criterion): number | null {
+  if (criterion.quantity === "slow-maximum") return lasMaxDb;
+  if (peak === null) return null;
+  const { peakWeighting } = criterion;
+  return peakWeighting === null || peakWeighting === peak.weighting ? peak.levelDb : null;
+}
+
+/** What a level proves about a maximum that it doesn't state, dB. */
+function provenDb(level: TaskLevel, { quantity, peakWeighting }: Criterion): number {
+  if (quantity === "peak" && peakWeighting !== "A") return Number.NEGATIVE_INFINITY;
+  if (level.lasMaxDb !== null) return level.lasMaxDb;
+  const { metric } = level;
+  if (metric.kind === "lavg" && metric.settings.weighting !== "A") return Number.NEGATIVE_INFINITY;
+  return level.levelDb;
+}
+
+function whyNot(level: TaskLevel, { quantity }: Criterion): Reason {
+  if (quantity === "slow-maximum") return "no-slow-maximum";
+  return level.peak === null ? "no-peak" : "peak-weighting";
+}

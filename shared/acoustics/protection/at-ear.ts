@@ -1,0 +1,410 @@
+import {
+  accountedMin,
+  governingReading,
+  likenessFactor,
+  missingTime,
+  type Sum,
+  sumReading,
+  unaccountedMin,
+} from "../day-sum";
+import { type ExchangeLaw, leastWeight, levelFactor, mostWeight, weightOf } from "../exchange-law";
+import type {
+  AttenuationMethod,
+  DayInput,
+  MethodResult,
+  ProtectorWord,
+  Reason,
+  RuleSetVersion,
+  ShiftInput,
+  TaskAtEar,
+  TaskLevel,
+  TimedTask,
+} from "../types";
+import { poweredShare } from "./active";
+import { en458Word } from "./adequacy";
+import { activeGainDb, methodResult, reductions } from "./attenuation";
+import { wornShareLevelDb } from "./wearing-time";
+
+/** A worker's day from under the protectors, minutes times weight under the rule's law without its threshold. */
+export interface DayAtEar {
+  readonly tasks: readonly TaskAtEar[];
+  /** Active parts off. */
+  readonly off: Sum;
+  /** Active parts on throughout; null without one whose data are known. */
+  readonly on: Sum | null;
+  /** On while the batteries last; null where a battery is not stated. */
+  readonly asWorked: Sum | null;
+  /** What a limit is judged on: as worked where the site credits a checked active part, else off. */
+  readonly judged: Sum;
+  /** Protectors worn throughout the tasks in which they are worn at all. */
+  readonly fullyWorn: Sum;
+  /** Some protector counts as worn. */
+  readonly isWorn: boolean;
+  readonly isWearingUnknown: boolean;
+  /** By timed task: the active part counts for the verdict. */
+  readonly creditedTaskIds: ReadonlySet<string>;
+}
+
+/** Weight factors of one task: bare is 1. Least and most differ where something about the protector is not known. */
+interface Seen {
+  readonly atEar: TaskAtEar;
+  readonly task: TimedTask;
+  /** Worn, active part off and on; null: not known. */
+  readonly off: number | null;
+  readonly on: number | null;
+  readonly isCredited: boolean;
+}
+
+/**
+ * The whole day at the ear. A protector counts in the tasks of its use that reach the site's wear-from level or lie in
+ * a zone; all other time counts bare. No threshold acts under a protector.
+ *
+ * Where no protector counts at all, the ear has what the workplace has, threshold and all.
+ *
+ * Where a reading governs the shift, it says how much there was, and the tasks only how it divides between them.
+ *
+ * @source osha-1910.95 App. B: the rating comes off the shift's TWA
+ * @source wearing-time closed form of the exchange-rate mean
+ */
+export function evaluateAtEar(
+  day: DayInput,
+  ruleSet: RuleSetVersion,
+  outsideLaw: ExchangeLaw,
+  outside: Sum,
+): DayAtEar {
+  if (!day.shifts.some((shift) => shift.tasks.some((task) => countsAsWorn(task, day)))) {
+    return bareDay(day, outside);
+  }
+  const law: ExchangeLaw = { ...outsideLaw, thresholdDb: null, table: null };
+  const tasks: TaskAtEar[] = [];
+  const creditedTaskIds = new Set<string>();
+  const off = new Adder();
+  const on = new Adder();
+  const asWorked = new Adder();
+  const judged = new Adder();
+  const fullyWorn = new Adder();
+  let hasActive = false;
+  let isBatteryUnknown = false;
+  let isWearingUnknown = false;
+
+  for (const shift of day.shifts) {
+    const seen: Seen[] = [];
+    let activeWornMin = 0;
+    let batteryMin: number | null = Number.POSITIVE_INFINITY;
+    for (const task of shift.tasks) {
+      const one = seeTask(task, day, ruleSet, law);
+      seen.push(one);
+      tasks.push(one.atEar);
+      if (one.isCredited) creditedTaskIds.add(task.id);
+      if (one.atEar.isWorn && task.wornPct === null) isWearingUnknown = true;
+      if (one.on === null || !task.protection) continue;
+      hasActive = true;
+      activeWornMin += (task.durationMin * (task.wornPct ?? 100)) / 100;
+      const own = task.protection.inner.active?.batteryMin ?? null;
+      batteryMin = own === null || batteryMin === null ? null : Math.min(batteryMin, own);
+    }
+    const powered = poweredShare(batteryMin, activeWornMin);
+    if (powered === null) isBatteryUnknown = true;
+
+    const scale = scaleOf(shift, law, outsideLaw);
+    for (const { task, off: offFactor, on: onFactor, atEar, isCredited } of seen) {
+      const { level } = task;
+      if (level === null || task.durationMin === 0) continue;
+      const minutes = task.durationMin * scale.factor;
+      const least = scale.isByReading ? weightOf(level.levelDb, law) : leastAtEar(level, law);
+      const most = scale.isByReading ? least : mostAtEar(level, law);
+      const worn = atEar.isWorn ? (task.wornPct === null ? null : task.wornPct / 100) : 0;
+      const mixed =
+        onFactor === null || offFactor === null || powered === null
+          ? null
+          : powered * onFactor + (1 - powered) * offFactor;
+      off.add(minutes, least, most, worn, offFactor);
+      on.add(minutes, least, most, worn, onFactor ?? offFactor);
+      asWorked.add(minutes, least, most, worn, mixed ?? offFactor);
+      judged.add(minutes, least, most, worn, isCredited ? (mixed ?? offFactor) : offFactor);
+      fullyWorn.add(minutes, least, most, atEar.isWorn ? 1 : 0, offFactor);
+    }
+    for (const adder of [off, on, asWorked, judged, fullyWorn]) adder.closeShift(shift, scale, law);
+  }
+  return {
+    tasks,
+    off: off.sum(),
+    on: hasActive ? on.sum() : null,
+    asWorked: hasActive && !isBatteryUnknown ? asWorked.sum() : null,
+    judged: judged.sum(),
+    fullyWorn: fullyWorn.sum(),
+    isWorn: true,
+    isWearingUnknown,
+    creditedTaskIds,
+  };
+}
+
+function bareDay(day: DayInput, outside: Sum): DayAtEar {
+  const tasks: TaskAtEar[] = [];
+  for (const shift of day.shifts) {
+    for (const task of shift.tasks) {
+      const outsideDb = task.level?.levelDb ?? null;
+      tasks.push(bareTask(task, false, outsideDb, outsideDb === null ? "level-missing" : null));
+    }
+  }
+  return {
+    tasks,
+    off: outside,
+    on: null,
+    asWorked: null,
+    judged: outside,
+    fullyWorn: outside,
+    isWorn: false,
+    isWearingUnknown: false,
+    creditedTaskIds: NOBODY,
+  };
+}
+
+const NOBODY: ReadonlySet<string> = new Set();
+
+/** How the tasks of a shift add up to it. */
+interface Scale {
+  readonly isByReading: boolean;
+  /** What a governing reading adds up to. */
+  readonly readingSum: number;
+  /** On the tasks' minutes. */
+  readonly factor: number;
+  readonly missing: Reason | null;
+}
+
+function scaleOf(shift: ShiftInput, law: ExchangeLaw, outsideLaw: ExchangeLaw): Scale {
+  const missing =
+    missingTime(shift) ??
+    (shift.tasks.some(({ level, durationMin }) => level === null && durationMin > 0)
+      ? "level-missing"
+      : null);
+  const likeness = likenessFactor(shift);
+  const reading = shift.readings.length > 0 ? governingReading(shift, outsideLaw) : undefined;
+  if (!reading) return { isByReading: false, readingSum: 0, factor: likeness, missing };
+  const readingSum = sumReading(reading, shift, { ...law, table: null });
+  let tasksSum = quietSum(shift, law);
+  for (const { level, durationMin } of shift.tasks) {
+    if (level) tasksSum += durationMin * likeness * weightOf(level.levelDb, law);
+  }
+  return {
+    isByReading: true,
+    readingSum,
+    factor: tasksSum > 0 ? (likeness * readingSum) / tasksSum : 0,
+    missing: missing ?? (accountedMin(shift) > 0 ? null : "no-tasks"),
+  };
+}
+
+function quietSum(shift: ShiftInput, law: ExchangeLaw): number {
+  return shift.unaccounted.how === "quiet"
+    ? unaccountedMin(shift) * weightOf(shift.unaccounted.levelDb, law)
+    : 0;
+}
+
+/** Adds tasks up by shift and day, with what is certain and what is possible. */
+class Adder {
+  private least = 0;
+  private most = 0;
+  private shiftLeast = 0;
+  private shiftMost = 0;
+  private missing: Reason | null = null;
+
+  add(
+    minutes: number,
+    leastWeightPerMin: number,
+    mostWeightPerMin: number,
+    worn: number | null,
+    factor: number | null,
+  ): void {
+    // Not knowing how long it was worn leaves everything between always and never; likewise what it takes off.
+    const most = worn === null || factor === null ? 1 : 1 - worn + worn * factor;
+    const least = worn === null ? (factor ?? 0) : 1 - worn + worn * (factor ?? 0);
+    this.shiftLeast += minutes * leastWeightPerMin * Math.min(least, most);
+    this.shiftMost += minutes * mostWeightPerMin * Math.max(least, most);
+  }
+
+  closeShift(shift: ShiftInput, scale: Scale, law: ExchangeLaw): void {
+    const { isByReading, readingSum, missing } = scale;
+    const factor = isByReading ? scale.factor : 1;
+    const quiet = quietSum(shift, law) * factor;
+    if (missing === null) {
+      this.least += this.shiftLeast + quiet;
+      this.most += this.shiftMost + quiet;
+    } else if (isByReading) {
+      this.most += readingSum;
+    } else {
+      this.least += this.shiftLeast + quiet;
+      this.most = Number.POSITIVE_INFINITY;
+    }
+    this.missing ??= missing;
+    this.shiftLeast = 0;
+    this.shiftMost = 0;
+  }
+
+  sum(): Sum {
+    return { least: this.least, most: this.most, missing: this.missing };
+  }
+}
+
+/** Under a protector an average of the rule's own exchange rate serves as it stands: its threshold no longer acts. */
+function servesAsItStands({ metric }: TaskLevel, law: ExchangeLaw): boolean {
+  return (
+    metric.kind === "lavg" &&
+    !law.isEnergy &&
+    metric.settings.weighting === "A" &&
+    metric.settings.response === "slow" &&
+    metric.settings.exchangeRateDb === law.exchangeRateDb
+  );
+}
+
+function leastAtEar(level: TaskLevel, law: ExchangeLaw): number {
+  return servesAsItStands(level, law)
+    ? weightOf(level.levelDb, law)
+    : leastWeight(level.metric, level.levelDb, law);
+}
+
+function mostAtEar(level: TaskLevel, law: ExchangeLaw): number {
+  return servesAsItStands(level, law)
+    ? weightOf(level.levelDb, law)
+    : mostWeight(level.metric, level.levelDb, law);
+}
+
+/** The noise of a task calls for a protector: by its level, or by the zone it lies in. */
+export function isInNoise(task: TimedTask, wearFromDb: number): boolean {
+  return task.zone !== "none" || (task.level !== null && task.level.levelDb >= wearFromDb);
+}
+
+/** A protector is assigned for the task, and the noise, the zone or the worker's own requirement calls for it. */
+export function countsAsWorn(task: TimedTask, day: DayInput): boolean {
+  return task.protection !== null && (day.mustWear || isInNoise(task, day.site.wearFromDb));
+}
+
+function seeTask(task: TimedTask, day: DayInput, ruleSet: RuleSetVersion, law: ExchangeLaw): Seen {
+  const { level, protection } = task;
+  const isWorn = countsAsWorn(task, day);
+  if (level === null) return { ...bare(task, isWorn, null, "level-missing"), off: null };
+  if (!isWorn || protection === null) return bare(task, false, level.levelDb, null);
+
+  const rule = ruleSet.protection;
+  const outsideDb = level.levelDb;
+  const methods = reductions(level, protection, rule).map((one) => methodResult(outsideDb, one));
+  const governing = governingMethod(methods, rule);
+  if (governing.atEarDb === null) {
+    return {
+      task,
+      off: null,
+      on: null,
+      isCredited: false,
+      atEar: {
+        ...bareTask(task, true, outsideDb, governing.reason),
+        methods,
+        inTaskDb: null,
+      },
+    };
+  }
+  const wornDb = governing.atEarDb;
+  const active = activeGainDb(level, protection, rule.alpha);
+  const wornActiveDb = active.gainDb === null ? null : wornDb - active.gainDb;
+  const isCredited =
+    wornActiveDb !== null && day.site.creditsActivePart && protection.activeCheckPassed;
+  const inTask = (whileWornDb: number): number | null =>
+    task.wornPct === null
+      ? null
+      : wornShareLevelDb(outsideDb, whileWornDb, task.wornPct, levelFactor(law));
+  // A worker who must wear one whatever the level is not told that it is too much for a quiet room.
+  const actionDb = isInNoise(task, day.site.wearFromDb) ? en458ActionDb(day, rule) : null;
+  return {
+    task,
+    off: weightOf(wornDb - outsideDb, law),
+    on: wornActiveDb === null ? null : weightOf(wornActiveDb - outsideDb, law),
+    isCredited,
+    atEar: {
+      timedTaskId: task.id,
+      outsideDb,
+      isWorn: true,
+      wornPct: task.wornPct,
+      methods,
+      governingMethod: governing.method,
+      wornDb,
+      wornActiveDb,
+      inTaskDb: inTask(wornDb),
+      inTaskActiveDb: wornActiveDb === null ? null : inTask(wornActiveDb),
+      word: wordOf(wornDb, actionDb),
+      wordActive: wornActiveDb === null ? null : wordOf(wornActiveDb, actionDb),
+      reason: task.wornPct === null ? "wearing-unknown" : active.reason,
+    },
+  };
+}
+
+function bare(
+  task: TimedTask,
+  isWorn: boolean,
+  outsideDb: number | null,
+  reason: Reason | null,
+): Seen {
+  const atEar = bareTask(task, isWorn, outsideDb, reason);
+  return { task, off: 1, on: null, isCredited: false, atEar };
+}
+
+function bareTask(
+  task: TimedTask,
+  isWorn: boolean,
+  outsideDb: number | null,
+  reason: Reason | null,
+): TaskAtEar {
+  return {
+    timedTaskId: task.id,
+    outsideDb,
+    isWorn,
+    wornPct: isWorn ? task.wornPct : null,
+    methods: NO_METHODS,
+    governingMethod: null,
+    wornDb: null,
+    wornActiveDb: null,
+    inTaskDb: outsideDb,
+    inTaskActiveDb: null,
+    word: null,
+    wordActive: null,
+    reason,
+  };
+}
+
+const NO_METHODS: readonly MethodResult[] = [];
+
+/** The action value from which the words hang for this worker, dB; null where the rule has no such scale. */
+function en458ActionDb(day: DayInput, rule: RuleSetVersion["protection"]): number | null {
+  if (rule.adequacy !== "en-458" || rule.targetDb === null) return null;
+  return Math.min(rule.targetDb, day.personalTargetDb ?? Number.POSITIVE_INFINITY);
+}
+
+function wordOf(wornDb: number, actionDb: number | null): ProtectorWord | null {
+  return actionDb === null ? null : en458Word(wornDb, actionDb);
+}
+
+interface Governing {
+  readonly method: AttenuationMethod | null;
+  readonly atEarDb: number | null;
+  readonly reason: Reason | null;
+}
+
+/** The method that counts under a rule, and the level by it; own fit replaces the label, or can only lower it. */
+function governingMethod(
+  methods: readonly MethodResult[],
+  rule: RuleSetVersion["protection"],
+): Governing {
+  if (rule.methods.length === 0) return { method: null, atEarDb: null, reason: "not-stated" };
+  let label: MethodResult | undefined;
+  let reason: Reason | null = null;
+  for (const name of rule.methods) {
+    const result = methods.find(({ method }) => method === name);
+    if (!result) continue;
+    if (result.atEarDb !== null) {
+      label = result;
+      break;
+    }
+    reason ??= result.reason;
+  }
+  const own = methods.find(({ method, atEarDb }) => method === "own-fit" && atEarDb !== null);
+  if (own && rule.ownFit === "replaces") return own;
+  if (!label) return { method: null, atEarDb: null, reason: reason ?? "no-attenuation-data" };
+  return own && own.atEarDb! > label.atEarDb! ? own : label;
+}

@@ -1,0 +1,110 @@
+/** A document that the arithmetic follows. `read`: in a copy of it; `reprint`: in a reprint; else from memory. */
+export interface Source {
+  readonly title: string;
+  readonly edition: string;
+  /** What its clauses stand on, and what is open about it. */
+  readonly note: string;
+  readonly status: "read" | "reprint" | "from-memory" | "derived";
+}
+
+/** Every source that a docstring or a working names by its id. */
+export const SOURCES = {
+  "iso-9612-2009": {
+    title: "ISO 9612, Determination of occupational noise exposure, engineering method",
+    edition: "2009",
+    note: "Clauses and Annex C from memory; Table C.4 agrees with its own definition. A third edition appeared in 2025 and is not followed here.",
+    status: "from-memory",
+  },
+  "iso-4869-2": {
+    title: "ISO 4869-2, Effective A-weighted levels when hearing protectors are worn",
+    edition: "2018, by pooled means and deviations as in 1994",
+    note: "Reference noises read in a translation from 125 Hz to 1 kHz and in part above; the rest from memory, every row summing to 100.0 dB.",
+    status: "from-memory",
+  },
+  "en-458": {
+    title: "EN 458, Selection, use, care and maintenance of hearing protectors",
+    edition: "2016",
+    note: "Bands of 5 dB below the action value, from memory.",
+    status: "from-memory",
+  },
+  "eu-2003-10-ec": {
+    title: "Directive 2003/10/EC on noise at work",
+    edition: "2003",
+    note: "Values read; the comparator of each duty from memory.",
+    status: "from-memory",
+  },
+  "osha-1910.95": {
+    title: "29 CFR 1910.95, Occupational noise exposure, with appendices A and B",
+    edition: "as amended 1983",
+    note: "Paragraphs (a), (b) and the tables read.",
+    status: "read",
+  },
+  "osha-otm": {
+    title: "OSHA Technical Manual, section III, chapter 5, Noise",
+    edition: "as last revised",
+    note: "Derating and double protection, in a reprint.",
+    status: "reprint",
+  },
+  "niosh-98-126": {
+    title: "NIOSH 98-126, Criteria for a recommended standard, occupational noise exposure",
+    edition: "1998",
+    note: "Tables in a reprint; the order of derating from memory.",
+    status: "reprint",
+  },
+  "fra-49cfr227": {
+    title: "49 CFR 227, Occupational noise exposure for railroad operating employees, Appendix B",
+    edition: "2006",
+    note: "Factors and order of derating.",
+    status: "read",
+  },
+  "nr-15": {
+    title: "NR-15, Atividades e operações insalubres, annexes 1 and 2",
+    edition: "1978",
+    note: "Tables in a reprint.",
+    status: "reprint",
+  },
+  "as-nzs-1270": {
+    title: "AS/NZS 1270, Acoustic hearing protectors",
+    edition: "2002",
+    note: "SLC80 comes off the C-weighted level.",
+    status: "from-memory",
+  },
+  "iec-61252": {
+    title: "IEC 61252, Personal sound exposure meters",
+    edition: "1993, amended 2000",
+    note: "Sound exposure in Pa²h.",
+    status: "from-memory",
+  },
+  "iec-61260-1": {
+    title: "IEC 61260-1, Octave-band and fractional-octave-band filters",
+    edition: "2014",
+    note: "Base-ten mid frequencies and band edges.",
+    status: "from-memory",
+  },
+  "iec-61672-1": {
+    title: "IEC 61672-1, Sound level meters",
+    edition: "2013",
+    note: "Weightings at the nominal mid frequencies; 67 of 68 agree with the analytic form.",
+    status: "from-memory",
+  },
+  "elliott-2001": {
+    title: "S. J. Elliott, Signal Processing for Active Control",
+    edition: "2001",
+    note: "Two waves of opposite sign: |1 − g·exp(−jφ)|², and what follows from it.",
+    status: "derived",
+  },
+  "land-1971": {
+    title: "C. E. Land, Confidence intervals for linear functions of the normal mean and variance",
+    edition: "1971",
+    note: "Exact limit of a log-normal mean, derived from its definition.",
+    status: "derived",
+  },
+  "wearing-time": {
+    title: "Mean of a level over the time worn and the time not worn",
+    edition: "closed form",
+    note: "Follows from the definition of the exchange-rate mean.",
+    status: "derived",
+  },
+} as const satisfies Record<string, Source>;
+
+export type SourceId = keyof typeof SOURCES;

@@ -1,0 +1,50 @@
+import type { CriterionResult, DayEvaluation, DayInput, RuleSetVersion, Verdict } from "../acoustics/types";
+import type { DayFigures } from "../schemas/finding";
+
+/** The one word for several criteria: what is certain and worst, before what is open, before what is fine. */
+export function headline(results: readonly Pick<CriterionResult, "verdict">[]): Verdict {
+  for (const verdict of ["over", "cant-tell-yet", "under"] as const) {
+    if (results.some((result) => result.verdict === verdict)) return verdict;
+  }
+  return "not-assessed";
+}
+
+const levelQuantities: ReadonlySet<string | undefined> = new Set(["lex-8h", "dose", "table-dose"]);
+
+export type DaySummary = Omit<DayFigures, "resultId" | "origin"> & {
+  decidingTaskId: string | null;
+  dosePct: number | null;
+};
+
+/** What a list row, a strip and a stored result need of an evaluated day. */
+export function summarizeDay(input: DayInput, evaluation: DayEvaluation, governing: RuleSetVersion): DaySummary {
+  const own = evaluation.criteria.filter(({ ruleSetKey }) => ruleSetKey === governing.key);
+  const quantityOf = ({ criterionId }: CriterionResult) => governing.criteria.find(({ id }) => id === criterionId)?.quantity;
+  const levels = own.filter((result) => levelQuantities.has(quantityOf(result)));
+  const outside = levels.filter(({ judged }) => judged === "without-protection");
+  const atEar = levels.filter(({ judged }) => judged === "at-the-ear");
+  const tasks = input.shifts.flatMap((shift) => shift.tasks);
+  const deciding = evaluation.tasks.find(({ timedTaskId }) => timedTaskId === evaluation.decidingTaskId);
+  const decidingTask = tasks.find(({ id }) => id === evaluation.decidingTaskId);
+  return {
+    date: evaluation.date,
+    outsideDb: evaluation.outsideDb,
+    outsideBound: evaluation.outsideBound,
+    atEarDb: evaluation.atEarDb,
+    atEarActiveDb: evaluation.atEarActiveDb,
+    atEarAsWorkedDb: evaluation.atEarAsWorkedDb,
+    uncertaintyDb: evaluation.uncertaintyDb,
+    whileWornDb: deciding?.wornDb ?? null,
+    verdictOutside: headline(outside),
+    verdictAtEar: headline(atEar),
+    word: evaluation.word,
+    decidingTaskId: decidingTask?.taskId ?? null,
+    decidingTaskName: decidingTask?.name ?? null,
+    hasProtector: evaluation.tasks.some(({ isWorn }) => isWorn) ? "yes" : "no",
+    reason: evaluation.protectorReason ?? atEar.find(({ reason }) => reason)?.reason ?? outside.find(({ reason }) => reason)?.reason ?? null,
+    ruleSetKey: governing.key,
+    ruleSetVersion: governing.version,
+    governingCriteria: own.map(({ criterionId, verdict, isClear, levelDb, dosePct, reason }) => ({ criterionId, verdict, isClear, levelDb, dosePct, reason })),
+    dosePct: outside.find(({ dosePct }) => dosePct !== null)?.dosePct ?? null,
+  };
+}

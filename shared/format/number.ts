@@ -1,0 +1,60 @@
+import type { Locale } from "../i18n/index";
+
+export const MINUS = "\u2212";
+/** What stands where there is no number: never 0. */
+export const NO_FIGURE = "\u2013";
+
+const DECIMAL_MARK: Readonly<Record<Locale, string>> = { en: ".", de: "," };
+
+/** Rounds half away from zero on the decimal digits, so that 86.65 is 86.7 whatever its binary neighbour says. */
+export function roundTo(value: number, digits: number): number {
+  const [mantissa, exponent = "0"] = Math.abs(value).toExponential().split("e");
+  const rounded = Math.round(Number(`${mantissa}e${Number(exponent) + digits}`));
+  return Math.sign(value) * Number(`${rounded}e${-digits}`);
+}
+
+/** A plain number with a fixed count of decimals, true minus and the locale's mark; thousands apart by a thin space. */
+export function formatNumber(value: number | null, digits: number, locale: Locale): string {
+  if (value === null || !Number.isFinite(value)) return NO_FIGURE;
+  const rounded = roundTo(value, digits);
+  const [whole = "0", fraction] = Math.abs(rounded).toFixed(digits).split(".");
+  const grouped = whole.length > 3 ? whole.replace(/\B(?=(\d{3})+$)/g, "\u202f") : whole;
+  const sign = rounded < 0 ? MINUS : "";
+  return fraction === undefined
+    ? `${sign}${grouped}`
+    : `${sign}${grouped}${DECIMAL_MARK[locale]}${fraction}`;
+}
+
+/** As typed into a field: no thousands mark, all stored digits. */
+export function editNumber(value: number | null, locale: Locale): string {
+  if (value === null || !Number.isFinite(value)) return "";
+  return String(value).replace(".", DECIMAL_MARK[locale]).replace("-", MINUS);
+}
+
+export type Parsed<T> =
+  | { readonly kind: "empty" }
+  | { readonly kind: "ok"; readonly value: T }
+  | { readonly kind: "ambiguous" }
+  | { readonly kind: "invalid" };
+
+/**
+ * A number as a person types it. The comma is a decimal mark where the locale writes it so. The other locale's mark is
+ * taken only where it can't be a thousands mark: "86.7" is clear everywhere, "1.234" in German or "1,234" in English is
+ * ambiguous, and "86,7" in English is refused.
+ */
+export function parseNumber(text: string, locale: Locale): Parsed<number> {
+  const typed = text.trim().replace(/[\u2212\u2013]/g, "-");
+  if (typed === "") return { kind: "empty" };
+  if (!/^-?[\d.,]+$/.test(typed)) return { kind: "invalid" };
+  const marks: readonly string[] = typed.match(/[.,]/g) ?? [];
+  if (marks.length > 1) return { kind: marks.includes(",") ? "ambiguous" : "invalid" };
+  const mark = marks[0];
+  if (mark !== undefined && mark !== DECIMAL_MARK[locale]) {
+    const looksLikeThousands = /^-?\d{1,3}[.,]\d{3}$/.test(typed);
+    if (looksLikeThousands || locale === "en") return { kind: "ambiguous" };
+  }
+  const plain = typed.replace(",", ".");
+  if (!/\d/.test(plain)) return { kind: "invalid" };
+  const value = Number(plain);
+  return Number.isFinite(value) ? { kind: "ok", value } : { kind: "invalid" };
+}

@@ -1,0 +1,66 @@
+import { type I18n, type Messages, setupI18n } from "@lingui/core";
+
+export const LOCALES = ["en", "de"] as const;
+export type Locale = (typeof LOCALES)[number];
+
+/** Each language in its own words, for the choice before sign-in. */
+export const LOCALE_NAMES: Readonly<Record<Locale, string>> = { en: "English", de: "Deutsch" };
+
+export function isLocale(value: unknown): value is Locale {
+  return LOCALES.some((locale) => locale === value);
+}
+
+/** The first language of an Accept-Language list (or of the browser's) that we speak; English where none is. */
+export function pickLocale(wanted: readonly string[]): Locale {
+  for (const tag of wanted) {
+    const language = tag.split(";")[0]?.split("-")[0]?.trim().toLowerCase();
+    if (isLocale(language)) return language;
+  }
+  return "en";
+}
+
+/**
+ * The catalogue comes in two parts: what every page needs, the worker's included, and the rest (officers' screens, mails),
+ * which a worker's phone never loads.
+ */
+export type CataloguePart = "base" | "office";
+
+// One literal import a file, so that the bundler makes one chunk each.
+const CATALOGUES: Readonly<
+  Record<CataloguePart, Readonly<Record<Locale, () => Promise<{ messages: Messages }>>>>
+> = {
+  base: { en: () => import("./en"), de: () => import("./de") },
+  office: { en: () => import("./office-en"), de: () => import("./office-de") },
+};
+
+const loadedParts = new WeakMap<I18n, Set<CataloguePart>>();
+
+async function loadMessages(locale: Locale, parts: Iterable<CataloguePart>): Promise<Messages> {
+  const catalogues = await Promise.all([...parts].map((part) => CATALOGUES[part][locale]()));
+  return Object.assign({}, ...catalogues.map((catalogue) => catalogue.messages)) as Messages;
+}
+
+/** An i18n object with its compiled catalogue. The server takes both parts; the client starts with the base. */
+export async function createI18n(
+  locale: Locale,
+  parts: readonly CataloguePart[] = ["base", "office"],
+): Promise<I18n> {
+  const i18n = setupI18n({ locale, messages: { [locale]: await loadMessages(locale, parts) } });
+  loadedParts.set(i18n, new Set(parts));
+  return i18n;
+}
+
+/** Adds a part of the catalogue to an i18n object in use; once it is there, this costs nothing. */
+export async function addCatalogue(i18n: I18n, part: CataloguePart): Promise<void> {
+  const parts = loadedParts.get(i18n) ?? new Set<CataloguePart>();
+  if (parts.has(part)) return;
+  // `load` merges into what is there.
+  if (isLocale(i18n.locale)) i18n.load(i18n.locale, await loadMessages(i18n.locale, [part]));
+  loadedParts.set(i18n, parts.add(part));
+}
+
+/** Puts another language into an i18n object in use, with all parts that it had. */
+export async function activateLocale(i18n: I18n, locale: Locale): Promise<void> {
+  const parts = loadedParts.get(i18n) ?? ["base"];
+  i18n.loadAndActivate({ locale, messages: await loadMessages(locale, parts) });
+}

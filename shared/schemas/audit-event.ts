@@ -1,0 +1,26 @@
+import { z } from "zod";
+import { PageQuery, pageOf } from "./common";
+
+export const AuditEventFilter = PageQuery.extend({
+  subjectKind: z.string().min(1).max(40).optional(),
+  subjectId: z.uuid().optional(),
+  actorId: z.uuid().optional(),
+});
+export type AuditEventFilter = z.infer<typeof AuditEventFilter>;
+
+/** Who changed what, and when. */
+export const AuditEventView = z.object({
+  id: z.string(),
+  at: z.string(),
+  /** Null: the program itself. */
+  actorId: z.uuid().nullable(),
+  actorName: z.string().nullable(),
+  action: z.string(),
+  subjectKind: z.string(),
+  subjectId: z.uuid().nullable(),
+  /** Null once the personal values have been erased; the event itself stays. */
+  values: z.record(z.string(), z.unknown()).nullable(),
+  isSealed: z.boolean(),
+});
+export type AuditEventView = z.infer<typeof AuditEventView>;
+export const AuditEventPage = pageOf(AuditEventView);

@@ -1,0 +1,112 @@
+import { z } from "zod";
+import { Can, IsoDate, PageQuery, pageOf, Reason } from "./common";
+
+export const FINDING_KINDS = [
+  "over-limit-outside", "over-limit-at-ear", "protects-too-little", "protects-too-much", "dual-protection", "no-protector",
+  "not-worn-long-enough", "wearing-unknown", "peak-or-ceiling", "reading-gap", "time-not-accounted", "reading-missing",
+  "instrument", "problem-reported",
+] as const;
+export const FindingKind = z.enum(FINDING_KINDS);
+export type FindingKind = z.infer<typeof FindingKind>;
+
+export const FindingState = z.enum(["new", "in-hand", "done", "closed", "came-back"]);
+export type FindingState = z.infer<typeof FindingState>;
+
+/** The numbers of a day that a list row needs for its strip. */
+export const DayFigures = z.object({
+  resultId: z.uuid(),
+  date: IsoDate,
+  origin: z.enum(["computed", "imported"]),
+  outsideDb: z.number().nullable(),
+  outsideBound: z.enum(["exact", "upper", "lower"]),
+  atEarDb: z.number().nullable(),
+  atEarActiveDb: z.number().nullable(),
+  atEarAsWorkedDb: z.number().nullable(),
+  uncertaintyDb: z.number().nullable(),
+  whileWornDb: z.number().nullable(),
+  verdictOutside: z.enum(["under", "over", "cant-tell-yet", "not-assessed"]),
+  verdictAtEar: z.enum(["under", "over", "cant-tell-yet", "not-assessed"]),
+  word: z.enum(["too-little", "just-enough", "good", "strong-side", "too-much", "enough"]).nullable(),
+  decidingTaskName: z.string().nullable(),
+  hasProtector: z.enum(["yes", "no", "unknown"]),
+  reason: z.string().nullable(),
+  ruleSetKey: z.string(),
+  ruleSetVersion: z.number(),
+  /** Every criterion of the governing rule set, from `criteria->'governing'`. */
+  governingCriteria: z.array(
+    z.object({
+      criterionId: z.string(),
+      verdict: z.enum(["under", "over", "cant-tell-yet", "not-assessed"]),
+      isClear: z.boolean(),
+      levelDb: z.number().nullable(),
+      dosePct: z.number().nullable(),
+      reason: z.string().nullable(),
+    }),
+  ),
+});
+export type DayFigures = z.infer<typeof DayFigures>;
+
+export const FindingRow = z.object({
+  id: z.uuid(),
+  kind: FindingKind,
+  state: FindingState,
+  criterion: z.string(),
+  useKey: z.string(),
+  /** Codes and numbers from which the sentence is made. */
+  facts: z.record(z.string(), z.unknown()),
+  firstDate: IsoDate,
+  lastDate: IsoDate,
+  daysCount: z.number(),
+  dueOn: IsoDate.nullable(),
+  siteId: z.uuid(),
+  worker: z.object({ id: z.uuid(), name: z.string(), employeeNumber: z.string() }).nullable(),
+  /** The group, the instrument or the crew it concerns, in words. */
+  subjectName: z.string().nullable(),
+  crewName: z.string().nullable(),
+  figures: DayFigures.nullable(),
+  ownerName: z.string().nullable(),
+  revision: z.number(),
+  can: Can("handle", "markDone", "comment"),
+});
+export type FindingRow = z.infer<typeof FindingRow>;
+export const FindingPage = pageOf(FindingRow);
+
+export const FindingFilter = PageQuery.extend({
+  state: z.enum(["open", "closed", "all", "done"]).default("open"),
+  siteId: z.uuid().optional(),
+  workerId: z.uuid().optional(),
+  kind: FindingKind.optional(),
+});
+
+export const FindingStep = z.object({
+  id: z.uuid(),
+  kind: z.enum(["state", "comment", "marked-done", "cannot", "evidence-gone"]),
+  fromState: FindingState.nullable(),
+  toState: FindingState.nullable(),
+  text: z.string().nullable(),
+  authorName: z.string().nullable(),
+  at: z.string(),
+});
+
+export const FindingView = FindingRow.extend({
+  closingReason: z.string().nullable(),
+  closedOn: IsoDate.nullable(),
+  previousId: z.uuid().nullable(),
+  steps: z.array(FindingStep),
+  evidence: z.array(DayFigures),
+  told: z.array(z.object({ noticeId: z.uuid(), name: z.string(), audience: z.string(), state: z.string(), at: z.string().nullable() })),
+});
+export type FindingView = z.infer<typeof FindingView>;
+
+/** One step in a finding's life. Closing needs a reason; a comment alone changes no state. */
+export const FindingStepInput = z.discriminatedUnion("kind", [
+  z.object({ kind: z.literal("take-in-hand"), dueOn: IsoDate.nullable().default(null) }),
+  z.object({ kind: z.literal("mark-done"), text: z.string().trim().max(2000).default("") }),
+  z.object({ kind: z.literal("cannot"), text: Reason }),
+  z.object({ kind: z.literal("reopen"), text: Reason }),
+  z.object({ kind: z.literal("close"), text: Reason }),
+  z.object({ kind: z.literal("comment"), text: z.string().trim().min(1).max(10_000) }),
+]);
+export type FindingStepInput = z.infer<typeof FindingStepInput>;
+
+export const ProblemReportInput = z.object({ text: z.string().trim().min(3).max(2000) });

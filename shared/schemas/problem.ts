@@ -1,0 +1,32 @@
+import { z } from "zod";
+
+/** Every answer that is not a success has one of these. Texts by locale are the client's. */
+export const PROBLEM_CODES = [
+  "invalid", "not-found", "forbidden", "signed-out", "no-grant", "csrf", "too-many-tries", "stale", "revision-missing",
+  "key-reused", "key-missing", "in-progress", "too-large", "not-csv", "database-down", "mail-down", "provider-down", "internal",
+  "try-again", "exists-already", "reference-missing", "shifts-overlap", "assignments-overlap", "membership-overlaps",
+  "last-administrator", "subject-taken", "role-granted-already", "finding-open-already", "finding-closed",
+  "notice-sent-already", "code-used", "code-expired", "code-unknown", "not-computed", "imported-no-working",
+  "own-grant", "nothing-to-do", "import-refused", "draining",
+] as const;
+export type ProblemCode = (typeof PROBLEM_CODES)[number];
+
+export const ProblemIssue = z.object({
+  /** Path of the field in the request, such as ["rows", 3, "tasks", 0, "durationMin"]. */
+  path: z.array(z.union([z.string(), z.number()])),
+  code: z.string(),
+  params: z.record(z.string(), z.union([z.string(), z.number()])).default({}),
+});
+export type ProblemIssue = z.infer<typeof ProblemIssue>;
+
+/** RFC 9457 problem details, with codes instead of sentences. */
+export const Problem = z.looseObject({
+  type: z.string(),
+  title: z.string(),
+  status: z.number(),
+  code: z.enum(PROBLEM_CODES),
+  params: z.record(z.string(), z.union([z.string(), z.number()])),
+  issues: z.array(ProblemIssue),
+  requestId: z.string(),
+});
+export type Problem = z.infer<typeof Problem>;

@@ -1,0 +1,30 @@
+import { z } from "zod";
+import type { DayEvaluation, DayInput } from "../acoustics/types";
+import { IsoDate } from "./common";
+import { DayFigures } from "./finding";
+
+export const DayParams = z.object({ id: z.uuid(), date: IsoDate });
+
+export const ResultRef = z.object({ id: z.uuid(), computedAt: z.string(), isCurrent: z.boolean(), governingRuleSet: z.string(), ruleSetVersion: z.number(), methodVersion: z.number() });
+
+/** A day with everything its working is drawn from; the working itself is built by the same engine where it is shown. */
+export const ResultView = z.object({
+  id: z.uuid(),
+  worker: z.object({ id: z.uuid(), name: z.string(), employeeNumber: z.string() }),
+  date: IsoDate,
+  shifts: z.array(z.object({ id: z.uuid(), localStart: z.string(), lengthMin: z.number(), revision: z.number(), authorName: z.string().nullable(), reason: z.string().nullable() })),
+  figures: DayFigures,
+  origin: z.enum(["computed", "imported"]),
+  computedAt: z.string(),
+  isCurrent: z.boolean(),
+  methodVersion: z.number(),
+  governing: z.object({ key: z.string(), version: z.number() }),
+  comparison: z.array(z.object({ key: z.string(), version: z.number() })),
+  /** Null for an imported day: levels only. */
+  input: z.custom<DayInput>().nullable(),
+  evaluation: z.custom<DayEvaluation>().nullable(),
+  sources: z.record(z.string(), z.object({ label: z.string(), note: z.string().nullable() })),
+  findings: z.array(z.object({ id: z.uuid(), kind: z.string(), state: z.string() })),
+  earlier: z.array(ResultRef),
+});
+export type ResultView = z.infer<typeof ResultView>;

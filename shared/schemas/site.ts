@@ -1,0 +1,56 @@
+import { z } from "zod";
+import { Can, IsoDate, Language, Name, Reason } from "./common";
+
+export const SiteSettingsFacts = z.object({
+  effectiveFrom: IsoDate,
+  governingRuleSet: z.string().min(1).max(80),
+  comparisonRuleSets: z.array(z.string().min(1).max(80)).max(12).default([]),
+  /** A protector counts as worn in tasks of this level or more. */
+  wearFromDb: z.number().min(60).max(120).default(85),
+  creditsActivePart: z.boolean().default(false),
+  usesUncertainty: z.boolean().default(false),
+});
+export const SiteSettingsInput = SiteSettingsFacts.extend({ reason: Reason });
+export type SiteSettingsInput = z.infer<typeof SiteSettingsInput>;
+
+export const SiteInput = z.object({
+  name: Name(200),
+  timeZone: z.string().min(1).max(80),
+  language: Language.default("en"),
+  noticeDelayMin: z.number().int().min(0).max(1440).default(15),
+});
+export type SiteInput = z.infer<typeof SiteInput>;
+export const NewSiteInput = SiteInput.extend({ settings: SiteSettingsFacts });
+
+export const SiteView = SiteInput.extend({
+  id: z.uuid(),
+  revision: z.number(),
+  settings: SiteSettingsFacts.extend({ id: z.uuid(), number: z.number(), reason: z.string().nullable() }),
+  settingsHistory: z.array(SiteSettingsFacts.extend({ id: z.uuid(), number: z.number(), reason: z.string().nullable(), authorName: z.string().nullable(), createdAt: z.string() })),
+  can: Can("change", "changeRules"),
+});
+export type SiteView = z.infer<typeof SiteView>;
+export const SiteList = z.object({ rows: z.array(SiteView) });
+
+export const AreaInput = z.object({
+  siteId: z.uuid(),
+  name: Name(200),
+  zone: z.enum(["none", "single", "double"]).default("none"),
+  isArchived: z.boolean().default(false),
+});
+export type AreaInput = z.infer<typeof AreaInput>;
+export const AreaView = AreaInput.extend({ id: z.uuid(), revision: z.number(), can: Can("change") });
+export const AreaList = z.object({ rows: z.array(AreaView) });
+
+/** Who would change verdict, before a change of rules or data is made. */
+export const ChangePreview = z.object({
+  days: z.number(),
+  workers: z.number(),
+  changes: z.array(z.object({
+    workerId: z.uuid(), workerName: z.string(), date: IsoDate, line: z.enum(["without-protection", "at-the-ear", "protector"]),
+    before: z.string(), after: z.string(),
+  })),
+  /** More than the list holds. */
+  changedDays: z.number(),
+});
+export type ChangePreview = z.infer<typeof ChangePreview>;

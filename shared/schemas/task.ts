@@ -1,0 +1,42 @@
+import { z } from "zod";
+import { Can, IsoDate, Name, Reason } from "./common";
+import { TaskLevelFacts } from "./evaluation";
+
+export const TaskLevelInput = TaskLevelFacts.extend({
+  effectiveFrom: IsoDate,
+  sourceNote: z.string().trim().max(2000).default(""),
+  /** Needed for every level after the first. */
+  reason: Reason.nullable().default(null),
+});
+export type TaskLevelInput = z.infer<typeof TaskLevelInput>;
+
+export const TaskLevelView = TaskLevelInput.extend({
+  id: z.uuid(), number: z.number(), authorName: z.string().nullable(), createdAt: z.string(),
+});
+
+export const TaskInput = z.object({ siteId: z.uuid(), areaId: z.uuid().nullable().default(null), name: Name(120), isArchived: z.boolean().default(false) });
+export type TaskInput = z.infer<typeof TaskInput>;
+export const NewTaskInput = TaskInput.extend({ level: TaskLevelInput.nullable().default(null) });
+
+export const TaskView = TaskInput.extend({
+  id: z.uuid(),
+  areaName: z.string().nullable(),
+  zone: z.enum(["none", "single", "double"]),
+  revision: z.number(),
+  /** In force today. */
+  level: TaskLevelView.nullable(),
+  can: Can("change"),
+});
+export type TaskView = z.infer<typeof TaskView>;
+export const TaskDetail = TaskView.extend({ levels: z.array(TaskLevelView), shiftsCount: z.number() });
+export const TaskList = z.object({ rows: z.array(TaskView) });
+
+export const JobInput = z.object({
+  siteId: z.uuid(),
+  name: Name(120),
+  isArchived: z.boolean().default(false),
+  tasks: z.array(z.object({ taskId: z.uuid(), durationMin: z.number().positive().max(1440) })).max(24),
+});
+export type JobInput = z.infer<typeof JobInput>;
+export const JobView = JobInput.extend({ id: z.uuid(), revision: z.number(), workersCount: z.number(), can: Can("change") });
+export const JobList = z.object({ rows: z.array(JobView) });

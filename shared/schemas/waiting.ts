@@ -1,0 +1,42 @@
+import { z } from "zod";
+import { IsoDate } from "./common";
+import { FindingRow } from "./finding";
+import { EntryNotices, NoticeRow } from "./notice";
+
+export const WaitingQuery = z.object({ siteId: z.uuid().optional() });
+
+/** How far a crew's day of today is entered. */
+export const CrewProgress = z.object({
+  id: z.uuid(), name: z.string(), siteId: z.uuid(), timeZone: z.string(), date: IsoDate, start: z.string(), lengthMin: z.number(),
+  members: z.number(), saved: z.number(), absent: z.number(),
+});
+export type CrewProgress = z.infer<typeof CrewProgress>;
+
+export const WaitingView = z.object({
+  today: IsoDate,
+  crews: z.array(CrewProgress),
+  findings: z.array(FindingRow),
+  next: z.string().nullable(),
+  toBeChecked: z.array(FindingRow),
+  outgoing: z.array(EntryNotices),
+  /** Not taken by the mail server, or nobody knows. */
+  troubled: z.array(NoticeRow),
+  calibrationsDue: z.array(z.object({ id: z.uuid(), name: z.string(), dueOn: IsoDate })),
+});
+export type WaitingView = z.infer<typeof WaitingView>;
+
+/** What is missing in a year, before it is exported. */
+export const GapKind = z.enum(["not-measured", "no-protector", "notice-late", "notice-not-sent", "not-assessed"]);
+export const YearQuery = z.object({ siteId: z.uuid(), year: z.coerce.number().int().min(1970).max(2200) });
+export const GapsView = z.object({
+  counts: z.array(z.object({ kind: GapKind, count: z.number() })),
+  months: z.array(z.object({
+    month: z.number(), days: z.number(), over: z.number(), cantTell: z.number(), notAssessed: z.number(), overOutside: z.number(), cantTellOutside: z.number(),
+    protectorFault: z.number(), corrected: z.number(), medianAtEarDb: z.number().nullable(), medianOutsideDb: z.number().nullable(),
+  })),
+  years: z.array(z.number()),
+  ruleSets: z.array(z.object({ key: z.string(), version: z.number() })),
+});
+export type GapsView = z.infer<typeof GapsView>;
+export const GapNamesQuery = YearQuery.extend({ kind: GapKind });
+export const GapNames = z.object({ rows: z.array(z.object({ id: z.uuid(), name: z.string(), employeeNumber: z.string(), note: z.string().nullable(), date: IsoDate.nullable() })) });

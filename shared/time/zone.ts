@@ -1,0 +1,55 @@
+import { tzOffset } from "@date-fns/tz";
+
+export type LocalInstant =
+  | { kind: "one"; instant: Date }
+  /** The clock was set back: this time came twice. */
+  | { kind: "twice"; first: Date; second: Date }
+  /** The clock was set forward: this time never came. */
+  | { kind: "skipped" };
+
+/**
+ * The instant at which a wall clock in a zone shows a local date and time.
+ *
+ * @param date ISO date
+ * @param time HH:MM
+ * @param timeZone IANA name
+ */
+export function atLocalTime(date: string, time: string, timeZone: string): LocalInstant {
+  const asUtc = Date.parse(`${date}T${time}:00Z`);
+  const dayMs = 86_400_000;
+  const minuteMs = 60_000;
+  const offsets = [tzOffset(timeZone, new Date(asUtc - dayMs)), tzOffset(timeZone, new Date(asUtc + dayMs))];
+  const found = [...new Set(offsets.map((offset) => asUtc - offset * minuteMs))]
+    .filter((instant) => instant + tzOffset(timeZone, new Date(instant)) * minuteMs === asUtc)
+    .sort((a, b) => a - b)
+    .map((instant) => new Date(instant));
+  const [first, second] = found;
+  if (!first) return { kind: "skipped" };
+  return second ? { kind: "twice", first, second } : { kind: "one", instant: first };
+}
+
+/** The local date in a zone at an instant, ISO. */
+export function localDate(instant: Date, timeZone: string): string {
+  const local = new Date(instant.getTime() + tzOffset(timeZone, instant) * 60_000);
+  return local.toISOString().slice(0, 10);
+}
+
+/** HH:MM in a zone at an instant. */
+export function localTime(instant: Date, timeZone: string): string {
+  const local = new Date(instant.getTime() + tzOffset(timeZone, instant) * 60_000);
+  return local.toISOString().slice(11, 16);
+}
+
+export function isTimeZone(timeZone: string): boolean {
+  try {
+    new Intl.DateTimeFormat("en", { timeZone });
+    return true;
+  } catch {
+    return false;
+  }
+}
+
+/** An ISO date some days later or earlier. */
+export function addDays(date: string, days: number): string {
+  return new Date(Date.parse(`${date}T00:00:00Z`) + days * 86_400_000).toISOString().slice(0, 10);
+}

@@ -1,0 +1,25 @@
+import { useLingui } from "@lingui/react";
+import type { ReactNode } from "react";
+import { problemText } from "../lib/problem-text";
+import { TextButton } from "./link";
+
+/** A part that failed, in its own place: what failed, what still holds, and a way to try again. */
+export function Failed({
+  error,
+  children,
+  onRetry,
+}: {
+  error?: unknown;
+  /** What failed and what still holds; else the error's own sentence. */
+  children?: ReactNode;
+  onRetry?: () => void;
+}) {
+  const { i18n } = useLingui();
+  return (
+    <p className="failed" role="alert">
+      <span className="reversed">{i18n.t("Not shown")}</span>
+      {children ?? problemText(i18n, error)}{" "}
+      {onRetry && <TextButton onClick={onRetry}>{i18n.t("Try again")}</TextButton>}
+    </p>
+  );
+}

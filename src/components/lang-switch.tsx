@@ -1,0 +1,23 @@
+import { useLingui } from "@lingui/react";
+import { LOCALE_NAMES, LOCALES } from "../../shared/i18n/index";
+import { chooseLocale, useLocale } from "../lib/i18n";
+import { TextButton } from "./link";
+
+/** The other languages, each in its own words; works before sign-in. */
+export function LangSwitch({ onChosen }: { onChosen?: () => void }) {
+  const { i18n } = useLingui();
+  const current = useLocale();
+  return (
+    <span className="lang-switch">
+      {LOCALES.filter((locale) => locale !== current).map((locale) => (
+        <TextButton
+          key={locale}
+          lang={locale}
+          onClick={() => void chooseLocale(i18n, locale).then(onChosen)}
+        >
+          {LOCALE_NAMES[locale]}
+        </TextButton>
+      ))}
+    </span>
+  );
+}

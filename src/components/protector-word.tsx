@@ -1,0 +1,60 @@
+import type { I18n } from "@lingui/core";
+import { useLingui } from "@lingui/react";
+import type { ReactNode } from "react";
+import type { ProtectorWord as WordCode } from "../../shared/acoustics/types";
+
+export function protectorWordText(i18n: I18n, word: WordCode): string {
+  switch (word) {
+    case "too-little":
+      return i18n.t("Too little");
+    case "just-enough":
+      return i18n.t("Just enough");
+    case "good":
+      return i18n.t("Good");
+    case "strong-side":
+      return i18n.t("On the strong side");
+    case "too-much":
+      return i18n.t("Too much");
+    case "enough":
+      return i18n.t("Enough");
+  }
+}
+
+/** The standard's own word, where it differs from ours. */
+function standardWord(i18n: I18n, word: WordCode): string | null {
+  switch (word) {
+    case "too-little":
+      return i18n.t("insufficient");
+    case "just-enough":
+    case "strong-side":
+      return i18n.t("acceptable");
+    case "too-much":
+      return i18n.t("overprotection");
+    default:
+      return null;
+  }
+}
+
+/** `beneath`: the task and level that decide it. Without `word`: none is judged, and the reason stands beneath. */
+export function ProtectorWord({
+  word,
+  beneath,
+  showsStandardWord = false,
+}: {
+  word: WordCode | null;
+  beneath?: ReactNode;
+  showsStandardWord?: boolean;
+}) {
+  const { i18n } = useLingui();
+  const isFault = word === "too-little" || word === "too-much";
+  const standard = word && showsStandardWord ? standardWord(i18n, word) : null;
+  return (
+    <span className="two-lines">
+      <span className={word === null ? "not-assessed" : isFault ? "is-fault" : undefined}>
+        {word === null ? i18n.t("Not assessed") : protectorWordText(i18n, word)}
+      </span>
+      {standard && <span className="beneath italic">{standard}</span>}
+      {beneath !== undefined && <span className="beneath">{beneath}</span>}
+    </span>
+  );
+}

@@ -1,0 +1,48 @@
+import type { I18n } from "@lingui/core";
+import { I18nProvider, useLingui } from "@lingui/react";
+import type { ReactNode } from "react";
+import {
+  activateLocale,
+  createI18n,
+  isLocale,
+  type Locale,
+  pickLocale,
+} from "../../shared/i18n/index";
+
+/** Also read by the server, so that its pages and mails speak the chosen language. */
+const LOCALE_COOKIE = "dinward.locale";
+const A_YEAR_S = 31_536_000;
+
+function readCookie(name: string): string | undefined {
+  const entry = document.cookie.split("; ").find((part) => part.startsWith(`${name}=`));
+  return entry && decodeURIComponent(entry.slice(name.length + 1));
+}
+
+/** The language chosen on this device, else the browser's. */
+function chosenLocale(): Locale {
+  const stored = readCookie(LOCALE_COOKIE);
+  return isLocale(stored) ? stored : pickLocale(navigator.languages);
+}
+
+export async function startI18n(): Promise<I18n> {
+  const locale = chosenLocale();
+  document.documentElement.lang = locale;
+  return createI18n(locale, ["base"]);
+}
+
+/** Switches the language at once and keeps the choice on this device. */
+export async function chooseLocale(i18n: I18n, locale: Locale): Promise<void> {
+  await activateLocale(i18n, locale);
+  document.documentElement.lang = locale;
+  // biome-ignore lint/suspicious/noDocumentCookie: the Cookie Store API is not in every browser that we serve
+  document.cookie = `${LOCALE_COOKIE}=${locale}; path=/; max-age=${A_YEAR_S}; samesite=lax`;
+}
+
+export function useLocale(): Locale {
+  const { i18n } = useLingui();
+  return isLocale(i18n.locale) ? i18n.locale : "en";
+}
+
+export function LanguageProvider({ i18n, children }: { i18n: I18n; children: ReactNode }) {
+  return <I18nProvider i18n={i18n}>{children}</I18nProvider>;
+}

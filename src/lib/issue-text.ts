@@ -1,0 +1,116 @@
+import type { I18n } from "@lingui/core";
+
+export interface FieldIssue {
+  readonly code: string;
+  readonly params: Readonly<Record<string, unknown>>;
+}
+
+const isText = (params: FieldIssue["params"]) => params.origin === "string";
+
+function sizeText(i18n: I18n, { code, params }: FieldIssue): string {
+  const minimum = Number(params.minimum);
+  const maximum = Number(params.maximum);
+  if (code === "too_small") {
+    if (params.origin === "array") return i18n.t("At least one is needed.");
+    if (isText(params))
+      return minimum <= 1
+        ? i18n.t("This is needed.")
+        : i18n.t("At least {minimum, plural, one {# character} other {# characters}}.", {
+            minimum,
+          });
+    return i18n.t("At least {minimum}.", { minimum });
+  }
+  if (params.origin === "array") return i18n.t("These are too many.");
+  if (isText(params))
+    return i18n.t("At most {maximum, plural, one {# character} other {# characters}}.", {
+      maximum,
+    });
+  return i18n.t("At most {maximum}.", { maximum });
+}
+
+function formatText(i18n: I18n, format: unknown): string {
+  switch (format) {
+    case "date":
+      return i18n.t("This is not a date.");
+    case "email":
+      return i18n.t("This is not a mail address.");
+    default:
+      return i18n.t("This is not written as it should be.");
+  }
+}
+
+/**
+ * What is wrong with a field, as a sentence: the codes of the schemas (the same here and on the server), of the fields'
+ * own parsers, and of what only the server can know.
+ */
+export function issueText(i18n: I18n, issue: FieldIssue): string {
+  const { code, params } = issue;
+  switch (code) {
+    case "required":
+      return i18n.t("This is needed.");
+    case "invalid_type":
+      return params.expected === "number" || params.expected === "int"
+        ? i18n.t("A number is needed.")
+        : i18n.t("This is needed.");
+    case "too_small":
+    case "too_big":
+      return sizeText(i18n, issue);
+    case "invalid_format":
+      return formatText(i18n, params.format);
+    case "invalid_value":
+    case "invalid_union":
+      return i18n.t("Choose one of these.");
+    case "not_multiple_of":
+      return i18n.t("Only whole steps count here.");
+    case "ambiguous":
+      return i18n.t("This can be read in two ways. Write the decimals with {mark}.", {
+        mark: i18n.locale === "de" ? "," : ".",
+      });
+    case "not-a-number":
+      return i18n.t("This is not a number.");
+    case "not-a-duration":
+      return i18n.t("This is not a duration. Write 450, 7:30 or 7.5h.");
+    case "not-a-date":
+      return i18n.t("This is not a date.");
+    case "not-a-time":
+      return i18n.t("This is not a time of day.");
+    case "email-taken":
+      return i18n.t("Another person has this mail address.");
+    case "employee-number-taken":
+      return i18n.t("Another worker has this number.");
+    case "name-taken":
+      return i18n.t("This name is taken.");
+    case "serial-number-taken":
+      return i18n.t("Another instrument has this serial number.");
+    case "subject-taken":
+      return i18n.t("Another person has this sign-in.");
+    case "worker-has-user":
+      return i18n.t("This worker has a sign-in already.");
+    case "tasks-longer-than-shift":
+      return i18n.t(
+        "The tasks are longer than the shift. Take some minutes off, or lengthen the shift.",
+      );
+    case "task-twice":
+      return i18n.t("This task stands here twice.");
+    case "ends-before-start":
+      return i18n.t("It ends before it starts.");
+    case "left-before-hired":
+      return i18n.t("The day of leaving lies before the day of hiring.");
+    case "email-or-subject":
+      return i18n.t("A mail address or a sign-in is needed.");
+    case "one-use-only":
+      return i18n.t("Choose a task or an area, not both.");
+    case "same-protector-twice":
+      return i18n.t("Two different protectors are needed to wear them together.");
+    case "code-used":
+    case "code-expired":
+    case "code-unknown":
+      return i18n.t("This code does not work (any more). Ask for a new one.");
+    case "date-in-future":
+      return i18n.t("This date lies ahead.");
+    case "before-hire":
+      return i18n.t("This worker was hired later than that.");
+    default:
+      return i18n.t("This needs another look.");
+  }
+}

@@ -1,0 +1,41 @@
+import { insert } from "./insert";
+import type { Worker } from "./worker";
+
+interface DayOverrides {
+  atEarDb?: number;
+  outsideDb?: number;
+  crewId?: string;
+  decidingTaskId?: string;
+}
+
+/** A judged day of a worker with its current result, without the shift it would rest on. */
+export async function buildDay(worker: Worker, date: string, overrides: DayOverrides = {}): Promise<string> {
+  const { organizationId, id: workerId, siteId } = worker;
+  const { outsideDb = 91.3, atEarDb = 78.2, crewId, decidingTaskId } = overrides;
+  const resultId = await insert("day_results", {
+    organizationId,
+    siteId,
+    workerId,
+    date,
+    origin: "computed",
+    governingRuleSet: "eu-2003-10-ec",
+    governingVersion: 1,
+    methodVersion: 1,
+    inputsHash: Buffer.from(`${workerId} ${date}`),
+    shiftMin: 480,
+    unaccountedMin: 0,
+    grade: "task-level",
+    outsideDb,
+    outsideBound: "exact",
+    atEarDb,
+    verdictOutside: "over",
+    verdictAtEar: "under",
+    word: "good",
+    decidingTaskId,
+    hasProtector: "yes",
+    criteria: "[]",
+    refs: "{}",
+  });
+  await insert("days", { organizationId, workerId, date, siteId, crewId, currentResultId: resultId, isStale: false });
+  return resultId;
+}

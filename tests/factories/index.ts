@@ -1,0 +1,12 @@
+export { buildDay } from "./day";
+export { daysFromToday } from "./days";
+export { insert, select } from "./insert";
+export { buildInstrument } from "./instrument";
+export { buildOrganization } from "./organization";
+export { buildAssignment, buildProtector } from "./protector";
+export { type Call, Client, nobody, signInAs, testApp } from "./sign-in";
+export { buildShift } from "./shift";
+export { buildArea, buildSite, type Site } from "./site";
+export { buildJob, buildTask } from "./task";
+export { buildUser, type User } from "./user";
+export { buildCrew, buildSupervisorOf, buildWorker, type Worker } from "./worker";

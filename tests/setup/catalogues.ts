@@ -1,0 +1,3 @@
+import { compileCatalogues } from "../../scripts/lib/catalogues.mjs";
+
+export default compileCatalogues;

@@ -1,0 +1,64 @@
+import { existsSync } from "node:fs";
+import { defineConfig } from "vitest/config";
+
+const published = ["./tests/setup/printed.ts"].filter((file) => existsSync(file));
+
+/** Parts of `npm test`; each also runs alone: npx vitest run --project api. */
+export default defineConfig({
+  test: {
+    globalSetup: "./tests/setup/catalogues.ts",
+    projects: [
+      {
+        test: {
+          name: "unit",
+          include: ["{shared,server,scripts,migrations,seeders,bench}/**/*.test.ts"],
+          setupFiles: published,
+        },
+      },
+      {
+        test: {
+          name: "published",
+          include: ["tests/published/**/*.test.ts"],
+          setupFiles: published,
+        },
+      },
+      {
+        test: {
+          name: "client",
+          include: ["src/**/*.test.{ts,tsx}"],
+          environment: "jsdom",
+          setupFiles: "./tests/setup/client.ts",
+        },
+      },
+      {
+        test: {
+          name: "api",
+          include: ["tests/api/**/*.test.ts"],
+          globalSetup: ["./tests/setup/global-database.ts", "./tests/setup/global-services.ts"],
+          setupFiles: "./tests/setup/api.ts",
+          testTimeout: 20_000,
+          hookTimeout: 30_000,
+        },
+      },
+      {
+        test: {
+          name: "platform",
+          include: ["tests/platform/**/*.test.ts"],
+          fileParallelism: false,
+          testTimeout: 240_000,
+          hookTimeout: 240_000,
+        },
+      },
+      {
+        test: {
+          name: "e2e",
+          include: ["tests/e2e/**/*.test.ts"],
+          globalSetup: "./tests/setup/global-database.ts",
+          fileParallelism: false,
+          testTimeout: 120_000,
+          hookTimeout: 240_000,
+        },
+      },
+    ],
+  },
+});
