@@ -1,8 +1,23 @@
 import { defineConfig } from "@lingui/cli";
 import { formatter } from "@lingui/format-po";
 
-/** The worker's own pages: their texts go to the small part of the catalogue (see shared/i18n/index.ts). */
-const workerPages = ["src/features/own-*/**", "src/routes/own-*"];
+/**
+ * Pages that a worker's phone may load: their texts go to the small part of the catalogue (see shared/i18n/index.ts). A
+ * page missing here would show untranslated text until the other part is there.
+ */
+const workerPages = [
+  "src/router.tsx",
+  "src/features/session/**",
+  "src/features/me/**",
+  "src/routes/me*.tsx",
+  "src/routes/sign-in.tsx",
+  "src/routes/signed-in.tsx",
+  "src/routes/signed-out.tsx",
+  "src/routes/no-access.tsx",
+  "src/routes/not-found.tsx",
+  "src/routes/route-error.tsx",
+  "src/routes/loading.tsx",
+];
 const tests = ["**/*.test.ts", "**/*.test.tsx"];
 
 export default defineConfig({

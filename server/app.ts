@@ -120,7 +120,6 @@ const problems = (log: Log): ErrorRequestHandler => (thrown, _request, response,
   const requestId = response.locals.requestId as string;
   if (response.headersSent) return next(thrown);
   const error = toAppError(fromDatabase(thrown));
-  if (error.status >= 500 && process.env.DBG) console.error(thrown);
   if (error.status >= 500) log.error({ requestId, route: response.locals.route, code: error.code, ...describeError(thrown) }, "request failed");
   response.status(error.status).type("application/problem+json").json(error.toProblem(requestId));
 };

@@ -15,7 +15,8 @@ export async function addCrewMember(
 ): Promise<void> {
   const { fromDate, toDate, isLoan } = input;
   const issues = spanIssues(fromDate, toDate);
-  if (fromDate < worker.hiredOn) issues.push(issue(["fromDate"], "before-hire", { hiredOn: worker.hiredOn }));
+  if (fromDate < worker.hiredOn)
+    issues.push(issue(["fromDate"], "before-hire", { hiredOn: worker.hiredOn }));
   if (worker.leftOn !== null && fromDate > worker.leftOn) {
     issues.push(issue(["fromDate"], "after-leaving", { leftOn: worker.leftOn }));
   }
@@ -25,5 +26,10 @@ export async function addCrewMember(
     [actor.organizationId, crew.id, worker.id, fromDate, toDate, isLoan],
   );
   await crew.update({ revision: crew.revision + 1 });
-  await recordAudit(actor, { action: "add-crew-member", subjectKind: "crew", subjectId: crew.id, values: input });
+  await recordAudit(actor, {
+    action: "add-crew-member",
+    subjectKind: "crew",
+    subjectId: crew.id,
+    values: input,
+  });
 }

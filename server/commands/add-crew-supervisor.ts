@@ -7,7 +7,11 @@ import { issue, notFound, unprocessable } from "../lib/errors";
 import type { Actor } from "../lib/policy";
 import type { Crew } from "../models/worker";
 
-export async function addCrewSupervisor(actor: Actor, crew: Crew, input: z.infer<typeof SupervisorInput>): Promise<void> {
+export async function addCrewSupervisor(
+  actor: Actor,
+  crew: Crew,
+  input: z.infer<typeof SupervisorInput>,
+): Promise<void> {
   const { userId, fromDate, toDate } = input;
   checkSpan(fromDate, toDate);
   const user = await row<{ isSupervisor: boolean }>(
@@ -23,5 +27,10 @@ export async function addCrewSupervisor(actor: Actor, crew: Crew, input: z.infer
     [actor.organizationId, crew.id, userId, fromDate, toDate],
   );
   await crew.update({ revision: crew.revision + 1 });
-  await recordAudit(actor, { action: "add-crew-supervisor", subjectKind: "crew", subjectId: crew.id, values: input });
+  await recordAudit(actor, {
+    action: "add-crew-supervisor",
+    subjectKind: "crew",
+    subjectId: crew.id,
+    values: input,
+  });
 }

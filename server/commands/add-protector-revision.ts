@@ -14,6 +14,23 @@ export async function addProtectorRevision(
   input: ProtectorRevisionInput,
   under: string[] = [],
 ): Promise<void> {
+  const number = await insertProtectorRevision(actor, model, input, under);
+  await recordAudit(actor, {
+    action: "add-protector-revision",
+    subjectKind: "protector",
+    subjectId: model.id,
+    values: { number, ...input },
+  });
+  await markDaysStale(actor.organizationId, { modelId: model.id, fromDate: input.effectiveFrom });
+}
+
+/** The row alone, for the change itself and for its preview. */
+export async function insertProtectorRevision(
+  actor: Actor,
+  model: ProtectorModel,
+  input: ProtectorRevisionInput,
+  under: string[] = [],
+): Promise<number> {
   const { effectiveFrom, reason, ...data } = input;
   const last = await row<{ number: number }>(
     "SELECT coalesce(max(number), 0) AS number FROM protector_model_revisions WHERE model_id = :id",
@@ -26,8 +43,15 @@ export async function addProtectorRevision(
   await execute(
     `INSERT INTO protector_model_revisions (organization_id, model_id, number, effective_from, data, reason, author_id)
      VALUES ($1, $2, $3, $4, $5::jsonb, $6, $7)`,
-    [actor.organizationId, model.id, number, effectiveFrom, JSON.stringify(data), reason, actor.userId],
+    [
+      actor.organizationId,
+      model.id,
+      number,
+      effectiveFrom,
+      JSON.stringify(data),
+      reason,
+      actor.userId,
+    ],
   );
-  await recordAudit(actor, { action: "add-protector-revision", subjectKind: "protector", subjectId: model.id, values: { number, ...input } });
-  await markDaysStale(actor.organizationId, { modelId: model.id, fromDate: effectiveFrom });
+  return number;
 }

@@ -7,10 +7,19 @@ import { checkSettings } from "./check-site";
 import { markDaysStale } from "./mark-days-stale";
 
 /** New rules for a site from a date on; the days since then are judged again. */
-export async function addSiteSettings(actor: Actor, site: Site, input: SiteSettingsInput): Promise<void> {
+export async function addSiteSettings(
+  actor: Actor,
+  site: Site,
+  input: SiteSettingsInput,
+): Promise<void> {
   checkSettings(input);
   await insertSettings(actor, site, input);
-  await recordAudit(actor, { action: "add-site-settings", subjectKind: "site", subjectId: site.id, values: input });
+  await recordAudit(actor, {
+    action: "add-site-settings",
+    subjectKind: "site",
+    subjectId: site.id,
+    values: input,
+  });
   await markDaysStale(actor.organizationId, { siteId: site.id, fromDate: input.effectiveFrom });
 }
 

@@ -8,14 +8,37 @@ import type { Task } from "../models/task";
 import { markDaysStale } from "./mark-days-stale";
 
 /** A task's noise from a date on, or the correction of what stood from that date. The task's row is locked. */
-export async function addTaskLevel(actor: Actor, task: Task, input: TaskLevelInput, under: string[] = []): Promise<void> {
+export async function addTaskLevel(
+  actor: Actor,
+  task: Task,
+  input: TaskLevelInput,
+  under: string[] = [],
+): Promise<void> {
+  const number = await insertTaskLevel(actor, task, input, under);
+  await recordAudit(actor, {
+    action: "add-task-level",
+    subjectKind: "task",
+    subjectId: task.id,
+    values: { number, ...input },
+  });
+  await markDaysStale(actor.organizationId, { taskId: task.id, fromDate: input.effectiveFrom });
+}
+
+/** The row alone, for the change itself and for its preview. */
+export async function insertTaskLevel(
+  actor: Actor,
+  task: Task,
+  input: TaskLevelInput,
+  under: string[] = [],
+): Promise<number> {
   const last = await row<{ number: number }>(
     "SELECT coalesce(max(number), 0) AS number FROM task_levels WHERE task_id = :id",
     { id: task.id },
   );
   const number = (last?.number ?? 0) + 1;
   const issues = dateIssues([...under, "effectiveFrom"], input.effectiveFrom);
-  if (number > 1 && input.reason === null) issues.push(issue([...under, "reason"], "reason-needed"));
+  if (number > 1 && input.reason === null)
+    issues.push(issue([...under, "reason"], "reason-needed"));
   if (issues.length > 0) throw unprocessable(issues);
   await execute(
     `INSERT INTO task_levels (organization_id, task_id, number, effective_from, metric, level_db, lc_minus_la_db, octave_bands_db,
@@ -41,6 +64,5 @@ export async function addTaskLevel(actor: Actor, task: Task, input: TaskLevelInp
       actor.userId,
     ],
   );
-  await recordAudit(actor, { action: "add-task-level", subjectKind: "task", subjectId: task.id, values: { number, ...input } });
-  await markDaysStale(actor.organizationId, { taskId: task.id, fromDate: input.effectiveFrom });
+  return number;
 }

@@ -55,30 +55,51 @@ export async function assignProtector(
         actor.userId,
       ],
     );
-    await recordAudit(actor, { action: "assign-protector", subjectKind: "worker", subjectId: worker.id, values: { assignmentId: id, ...input } });
+    await recordAudit(actor, {
+      action: "assign-protector",
+      subjectKind: "worker",
+      subjectId: worker.id,
+      values: { assignmentId: id, ...input },
+    });
     await markDaysStale(actor.organizationId, { workerId: worker.id, fromDate: input.fromDate });
     ids.push(id);
   }
   return ids;
 }
 
-async function checkAssignment(actor: Actor, workers: readonly Person[], input: AssignmentInput, paths: Paths): Promise<void> {
+async function checkAssignment(
+  actor: Actor,
+  workers: readonly Person[],
+  input: AssignmentInput,
+  paths: Paths,
+): Promise<void> {
   const { fromDate, toDate, taskId, areaId } = input;
   if (taskId !== null) await findVisible(Task, programmePolicy, taskId, actor);
   if (areaId !== null) await findVisible(Area, programmePolicy, areaId, actor);
   const issues = [
-    ...spanIssues(fromDate, toDate).map((found) => ({ ...found, path: paths.field(String(found.path[0])) })),
+    ...spanIssues(fromDate, toDate).map((found) => ({
+      ...found,
+      path: paths.field(String(found.path[0])),
+    })),
     ...(await modelIssues(actor, input, paths)),
     ...workers.flatMap(({ hiredOn, leftOn }, index) => [
-      ...(fromDate < hiredOn ? [issue(paths.worker(index, "fromDate"), "before-hire", { hiredOn })] : []),
-      ...(leftOn !== null && fromDate > leftOn ? [issue(paths.worker(index, "fromDate"), "after-leaving", { leftOn })] : []),
+      ...(fromDate < hiredOn
+        ? [issue(paths.worker(index, "fromDate"), "before-hire", { hiredOn })]
+        : []),
+      ...(leftOn !== null && fromDate > leftOn
+        ? [issue(paths.worker(index, "fromDate"), "after-leaving", { leftOn })]
+        : []),
     ]),
     ...(await overlapIssues(workers, input, paths)),
   ];
   if (issues.length > 0) throw unprocessable(issues);
 }
 
-async function modelIssues(actor: Actor, input: AssignmentInput, paths: Paths): Promise<ProblemIssue[]> {
+async function modelIssues(
+  actor: Actor,
+  input: AssignmentInput,
+  paths: Paths,
+): Promise<ProblemIssue[]> {
   const worn = { innerModelId: input.innerModelId, outerModelId: input.outerModelId };
   const ids = Object.values(worn).filter((id) => id !== null);
   const found = await rows<{ id: string; isArchived: boolean; effectiveFrom: string }>(
@@ -94,16 +115,23 @@ async function modelIssues(actor: Actor, input: AssignmentInput, paths: Paths): 
     const { isArchived, effectiveFrom } = model;
     return [
       ...(isArchived ? [issue(paths.field(name), "protector-archived")] : []),
-      ...(effectiveFrom > input.fromDate ? [issue(paths.field(name), "protector-data-later", { effectiveFrom })] : []),
+      ...(effectiveFrom > input.fromDate
+        ? [issue(paths.field(name), "protector-data-later", { effectiveFrom })]
+        : []),
     ];
   });
 }
 
 /** In SQL: the assignments of the same use. The values are `:taskId` and `:areaId`. */
-const sameUse = "a.task_id IS NOT DISTINCT FROM CAST(:taskId AS uuid) AND a.area_id IS NOT DISTINCT FROM CAST(:areaId AS uuid)";
+const sameUse =
+  "a.task_id IS NOT DISTINCT FROM CAST(:taskId AS uuid) AND a.area_id IS NOT DISTINCT FROM CAST(:areaId AS uuid)";
 
 /** What stands in the way in spite of closing an earlier open one. The database holds it against two at once. */
-async function overlapIssues(workers: readonly Person[], input: AssignmentInput, paths: Paths): Promise<ProblemIssue[]> {
+async function overlapIssues(
+  workers: readonly Person[],
+  input: AssignmentInput,
+  paths: Paths,
+): Promise<ProblemIssue[]> {
   const { taskId, areaId, fromDate, toDate } = input;
   const found = await rows<{ workerId: string; fromDate: string; toDate: string | null }>(
     `SELECT a.worker_id AS "workerId", lower(a.valid)::text AS "fromDate", (upper(a.valid) - 1)::text AS "toDate"
@@ -115,7 +143,12 @@ async function overlapIssues(workers: readonly Person[], input: AssignmentInput,
   return workers.flatMap(({ id }, index) => {
     const span = taken.get(id);
     if (!span) return [];
-    return [issue(paths.worker(index, "fromDate"), "assignments-overlap", { fromDate: span.fromDate, toDate: span.toDate ?? "" })];
+    return [
+      issue(paths.worker(index, "fromDate"), "assignments-overlap", {
+        fromDate: span.fromDate,
+        toDate: span.toDate ?? "",
+      }),
+    ];
   });
 }
 
@@ -128,6 +161,11 @@ async function endEarlier(actor: Actor, workerId: string, input: AssignmentInput
   );
   for (const { id } of ended) {
     const values = { assignmentId: id, toDate: { from: null, to: addDays(fromDate, -1) } };
-    await recordAudit(actor, { action: "end-assignment", subjectKind: "worker", subjectId: workerId, values });
+    await recordAudit(actor, {
+      action: "end-assignment",
+      subjectKind: "worker",
+      subjectId: workerId,
+      values,
+    });
   }
 }

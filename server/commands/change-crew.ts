@@ -12,5 +12,10 @@ export async function changeCrew(actor: Actor, crew: Crew, input: CrewInput): Pr
   const changes = changesBetween<CrewInput>(before, input);
   if (isUnchanged(changes)) return;
   await crew.update({ ...input, revision: crew.revision + 1 });
-  await recordAudit(actor, { action: "change-crew", subjectKind: "crew", subjectId: crew.id, values: changes });
+  await recordAudit(actor, {
+    action: "change-crew",
+    subjectKind: "crew",
+    subjectId: crew.id,
+    values: changes,
+  });
 }

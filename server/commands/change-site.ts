@@ -11,5 +11,10 @@ export async function changeSite(actor: Actor, site: Site, input: SiteInput): Pr
   const changes = changesBetween(site, input);
   if (isUnchanged(changes)) return;
   await site.update({ ...input, revision: site.revision + 1 });
-  await recordAudit(actor, { action: "change-site", subjectKind: "site", subjectId: site.id, values: changes });
+  await recordAudit(actor, {
+    action: "change-site",
+    subjectKind: "site",
+    subjectId: site.id,
+    values: changes,
+  });
 }

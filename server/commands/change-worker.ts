@@ -10,16 +10,32 @@ import { markDaysStale } from "./mark-days-stale";
 import { saveRequirementReason } from "./save-requirement-reason";
 
 /** A personal requirement holds from the site's today on. */
-export async function changeWorker(actor: Actor, worker: Worker, site: Site, input: WorkerInput): Promise<void> {
+export async function changeWorker(
+  actor: Actor,
+  worker: Worker,
+  site: Site,
+  input: WorkerInput,
+): Promise<void> {
   await checkWorker(actor, input);
   const { requirementReason, ...facts } = input;
   const changes = changesBetween(worker, facts);
   const isRequirementReasonChanged = await saveRequirementReason(actor, worker, requirementReason);
   if (isUnchanged(changes) && !isRequirementReasonChanged) return;
   await worker.update({ ...facts, revision: worker.revision + 1 });
-  const values = { ...changes, ...(isRequirementReasonChanged ? { isRequirementReasonChanged } : {}) };
-  await recordAudit(actor, { action: "change-worker", subjectKind: "worker", subjectId: worker.id, values });
+  const values = {
+    ...changes,
+    ...(isRequirementReasonChanged ? { isRequirementReasonChanged } : {}),
+  };
+  await recordAudit(actor, {
+    action: "change-worker",
+    subjectKind: "worker",
+    subjectId: worker.id,
+    values,
+  });
   if (changes.mustWear || changes.personalTargetDb) {
-    await markDaysStale(actor.organizationId, { workerId: worker.id, fromDate: todayAt(site.timeZone) });
+    await markDaysStale(actor.organizationId, {
+      workerId: worker.id,
+      fromDate: todayAt(site.timeZone),
+    });
   }
 }

@@ -27,8 +27,11 @@ export function checkSettings(settings: SettingsFacts, under: string[] = []): vo
 
 /** @throws AppError invalid, unless the runtime and the database both know the zone. */
 export async function checkTimeZone(timeZone: string): Promise<void> {
-  const known = await row("SELECT 1 AS one FROM pg_timezone_names WHERE name = :timeZone", { timeZone });
-  if (!known || !isKnownHere(timeZone)) throw unprocessable([issue(["timeZone"], "time-zone-unknown")]);
+  const known = await row("SELECT 1 AS one FROM pg_timezone_names WHERE name = :timeZone", {
+    timeZone,
+  });
+  if (!known || !isKnownHere(timeZone))
+    throw unprocessable([issue(["timeZone"], "time-zone-unknown")]);
 }
 
 function isKnownHere(timeZone: string): boolean {

@@ -4,7 +4,11 @@ import { Area } from "../models/site";
 import { programmePolicy } from "../policies";
 
 /** @throws AppError not-found or invalid, unless the area is one of the task's own site. */
-export async function checkAreaOfTask(actor: Actor, siteId: string, areaId: string | null): Promise<void> {
+export async function checkAreaOfTask(
+  actor: Actor,
+  siteId: string,
+  areaId: string | null,
+): Promise<void> {
   if (areaId === null) return;
   const area = await findVisible(Area, programmePolicy, areaId, actor);
   if (area.siteId !== siteId) throw unprocessable([issue(["areaId"], "area-of-other-site")]);

@@ -10,7 +10,8 @@ export async function checkWorker(actor: Actor, input: WorkerInput): Promise<voi
   const { hiredOn, leftOn, jobId, siteId } = input;
   const issues = [...dateIssues(["hiredOn"], hiredOn), ...dateIssues(["leftOn"], leftOn)];
   const hasRequirement = input.mustWear || input.personalTargetDb !== null;
-  if (input.requirementReason && !hasRequirement) issues.push(issue(["requirementReason"], "reason-without-requirement"));
+  if (input.requirementReason && !hasRequirement)
+    issues.push(issue(["requirementReason"], "reason-without-requirement"));
   if (jobId !== null) {
     const job = await findVisible(Job, programmePolicy, jobId, actor);
     if (job.siteId !== siteId) issues.push(issue(["jobId"], "job-of-other-site"));

@@ -5,6 +5,11 @@ import { Area } from "../models/site";
 
 export async function createArea(actor: Actor, input: AreaInput): Promise<Area> {
   const area = await Area.create({ organizationId: actor.organizationId, ...input });
-  await recordAudit(actor, { action: "create-area", subjectKind: "area", subjectId: area.id, values: input });
+  await recordAudit(actor, {
+    action: "create-area",
+    subjectKind: "area",
+    subjectId: area.id,
+    values: input,
+  });
   return area;
 }

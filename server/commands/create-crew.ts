@@ -5,6 +5,11 @@ import { Crew } from "../models/worker";
 
 export async function createCrew(actor: Actor, input: CrewInput): Promise<Crew> {
   const crew = await Crew.create({ organizationId: actor.organizationId, ...input });
-  await recordAudit(actor, { action: "create-crew", subjectKind: "crew", subjectId: crew.id, values: input });
+  await recordAudit(actor, {
+    action: "create-crew",
+    subjectKind: "crew",
+    subjectId: crew.id,
+    values: input,
+  });
   return crew;
 }

@@ -14,6 +14,11 @@ export function checkCalibration({ calibrationDueOn }: InstrumentInput): void {
 export async function createInstrument(actor: Actor, input: InstrumentInput): Promise<Instrument> {
   checkCalibration(input);
   const instrument = await Instrument.create({ organizationId: actor.organizationId, ...input });
-  await recordAudit(actor, { action: "create-instrument", subjectKind: "instrument", subjectId: instrument.id, values: input });
+  await recordAudit(actor, {
+    action: "create-instrument",
+    subjectKind: "instrument",
+    subjectId: instrument.id,
+    values: input,
+  });
   return instrument;
 }

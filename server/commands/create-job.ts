@@ -9,6 +9,11 @@ export async function createJob(actor: Actor, input: JobInput): Promise<Job> {
   await checkNominalDay(actor, facts.siteId, tasks);
   const job = await Job.create({ organizationId: actor.organizationId, ...facts });
   await saveNominalDay(actor, job, tasks);
-  await recordAudit(actor, { action: "create-job", subjectKind: "job", subjectId: job.id, values: input });
+  await recordAudit(actor, {
+    action: "create-job",
+    subjectKind: "job",
+    subjectId: job.id,
+    values: input,
+  });
   return job;
 }

@@ -12,6 +12,11 @@ export async function createSite(actor: Actor, input: z.infer<typeof NewSiteInpu
   await checkTimeZone(facts.timeZone);
   const site = await Site.create({ organizationId: actor.organizationId, ...facts });
   await insertSettings(actor, site, { ...settings, reason: null });
-  await recordAudit(actor, { action: "create-site", subjectKind: "site", subjectId: site.id, values: input });
+  await recordAudit(actor, {
+    action: "create-site",
+    subjectKind: "site",
+    subjectId: site.id,
+    values: input,
+  });
   return site;
 }

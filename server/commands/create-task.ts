@@ -10,7 +10,12 @@ export async function createTask(actor: Actor, input: z.infer<typeof NewTaskInpu
   const { level, ...facts } = input;
   await checkAreaOfTask(actor, facts.siteId, facts.areaId);
   const task = await Task.create({ organizationId: actor.organizationId, ...facts });
-  await recordAudit(actor, { action: "create-task", subjectKind: "task", subjectId: task.id, values: facts });
+  await recordAudit(actor, {
+    action: "create-task",
+    subjectKind: "task",
+    subjectId: task.id,
+    values: facts,
+  });
   if (level) await addTaskLevel(actor, task, level, ["level"]);
   return task;
 }

@@ -9,6 +9,11 @@ export async function createUser(actor: Actor, input: UserInput): Promise<User> 
   await checkLink(facts.workerId, grants);
   const user = await User.create({ organizationId: actor.organizationId, ...facts });
   await setGrants(actor, user.id, grants);
-  await recordAudit(actor, { action: "create-user", subjectKind: "user", subjectId: user.id, values: input });
+  await recordAudit(actor, {
+    action: "create-user",
+    subjectKind: "user",
+    subjectId: user.id,
+    values: input,
+  });
   return user;
 }

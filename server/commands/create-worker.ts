@@ -11,6 +11,11 @@ export async function createWorker(actor: Actor, input: WorkerInput): Promise<Wo
   const worker = await Worker.create({ organizationId: actor.organizationId, ...facts });
   const hasReason = await saveRequirementReason(actor, worker, requirementReason);
   const values = { ...facts, ...(hasReason ? { isRequirementReasonChanged: true } : {}) };
-  await recordAudit(actor, { action: "create-worker", subjectKind: "worker", subjectId: worker.id, values });
+  await recordAudit(actor, {
+    action: "create-worker",
+    subjectKind: "worker",
+    subjectId: worker.id,
+    values,
+  });
   return worker;
 }

@@ -11,7 +11,13 @@ const spans = {
 } as const;
 
 /** The last day of a membership, or of a supervisor's time with a crew. */
-export async function endCrewSpan(actor: Actor, crew: Crew, kind: keyof typeof spans, id: string, toDate: string): Promise<void> {
+export async function endCrewSpan(
+  actor: Actor,
+  crew: Crew,
+  kind: keyof typeof spans,
+  id: string,
+  toDate: string,
+): Promise<void> {
   const { table, person, action } = spans[kind];
   const span = await row<{ personId: string; fromDate: string; toDate: string | null }>(
     `SELECT ${person} AS "personId", lower(valid)::text AS "fromDate", (upper(valid) - 1)::text AS "toDate"
@@ -21,8 +27,16 @@ export async function endCrewSpan(actor: Actor, crew: Crew, kind: keyof typeof s
   if (!span) throw notFound();
   checkSpan(span.fromDate, toDate);
   if (span.toDate === toDate) return;
-  await execute(`UPDATE ${table} SET valid = ${daysFromTo("$2", "$3")} WHERE id = $1`, [id, span.fromDate, toDate]);
+  await execute(`UPDATE ${table} SET valid = ${daysFromTo("$2", "$3")} WHERE id = $1`, [
+    id,
+    span.fromDate,
+    toDate,
+  ]);
   await crew.update({ revision: crew.revision + 1 });
-  const values = { [kind === "member" ? "workerId" : "userId"]: span.personId, fromDate: span.fromDate, toDate: { from: span.toDate, to: toDate } };
+  const values = {
+    [kind === "member" ? "workerId" : "userId"]: span.personId,
+    fromDate: span.fromDate,
+    toDate: { from: span.toDate, to: toDate },
+  };
   await recordAudit(actor, { action, subjectKind: "crew", subjectId: crew.id, values });
 }

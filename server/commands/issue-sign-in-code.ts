@@ -12,8 +12,12 @@ const alphabet = "ABCDEFGHJKLMNPQRSTUVWXYZ23456789";
 const validDays = 30;
 
 /** A code that binds a sign-in to the worker, once. Only its hash is kept; an older one that was not used ends here. */
-export async function issueSignInCode(actor: Actor, worker: Worker): Promise<{ code: string; expiresAt: Date }> {
-  if (worker.leftOn !== null && worker.leftOn < todayAt("UTC")) throw unprocessable([issue([], "worker-left")]);
+export async function issueSignInCode(
+  actor: Actor,
+  worker: Worker,
+): Promise<{ code: string; expiresAt: Date }> {
+  if (worker.leftOn !== null && worker.leftOn < todayAt("UTC"))
+    throw unprocessable([issue([], "worker-left")]);
   const letters = Array.from({ length: 12 }, () => alphabet[randomInt(alphabet.length)]).join("");
   const code = letters.replace(/(.{4})(?=.)/g, "$1-");
   const expiresAt = new Date(Date.now() + validDays * 86_400_000);
@@ -25,6 +29,11 @@ export async function issueSignInCode(actor: Actor, worker: Worker): Promise<{ c
     "INSERT INTO sign_in_codes (organization_id, worker_id, code_hash, expires_at, issued_by) VALUES ($1, $2, $3, $4, $5)",
     [actor.organizationId, worker.id, hashCode(code), expiresAt.toISOString(), actor.userId],
   );
-  await recordAudit(actor, { action: "issue-sign-in-code", subjectKind: "worker", subjectId: worker.id, values: { expiresAt } });
+  await recordAudit(actor, {
+    action: "issue-sign-in-code",
+    subjectKind: "worker",
+    subjectId: worker.id,
+    values: { expiresAt },
+  });
   return { code, expiresAt };
 }

@@ -1,7 +1,7 @@
 import { execute } from "../lib/db";
 import { addJob } from "../lib/jobs";
 
-interface Concerned {
+export interface Concerned {
   fromDate: string;
   siteId?: string;
   taskId?: string;
@@ -10,15 +10,9 @@ interface Concerned {
   workerId?: string;
 }
 
-/**
- * Marks the days whose inputs a change has moved and queues their recomputation, in the change's own transaction.
- * Until they are computed anew they keep their result, marked as out of date.
- */
-export async function markDaysStale(organizationId: string, where: Concerned): Promise<number> {
-  const { fromDate, siteId, taskId, areaId, modelId, workerId } = where;
-  const conditions = ["d.organization_id = $1", "d.date >= $2::date", "NOT d.is_stale"];
-  const bind: unknown[] = [organizationId, fromDate];
-  const value = (given: string) => `$${bind.push(given)}`;
+/** SQL: the days `d` whose inputs a change touches; `value` puts a value into the query. */
+export function concernedDays({ fromDate, siteId, taskId, areaId, modelId, workerId }: Concerned, value: (given: string) => string): string {
+  const conditions = [`d.date >= CAST(${value(fromDate)} AS date)`];
   if (siteId) conditions.push(`d.site_id = ${value(siteId)}`);
   if (workerId) conditions.push(`d.worker_id = ${value(workerId)}`);
   const usesTask = (of: string) => `EXISTS (SELECT 1 FROM shifts s JOIN shift_tasks t ON t.shift_revision_id = s.current_revision_id
@@ -27,9 +21,19 @@ export async function markDaysStale(organizationId: string, where: Concerned): P
   if (areaId) conditions.push(usesTask(`JOIN tasks k ON k.id = t.task_id WHERE k.area_id = ${value(areaId)}`));
   if (modelId) {
     const model = value(modelId);
-    conditions.push(`EXISTS (SELECT 1 FROM assignments a WHERE a.worker_id = d.worker_id AND a.valid @> d.date AND ${model}::uuid IN (a.inner_model_id, a.outer_model_id))`);
+    conditions.push(`EXISTS (SELECT 1 FROM assignments a WHERE a.worker_id = d.worker_id AND a.valid @> d.date AND CAST(${model} AS uuid) IN (a.inner_model_id, a.outer_model_id))`);
   }
-  const marked = await execute(`UPDATE days d SET is_stale = TRUE WHERE ${conditions.join(" AND ")}`, bind);
+  return conditions.join(" AND ");
+}
+
+/**
+ * Marks the days whose inputs a change has moved and queues their recomputation, in the change's own transaction.
+ * Until they are computed anew they keep their result, marked as out of date.
+ */
+export async function markDaysStale(organizationId: string, where: Concerned): Promise<number> {
+  const bind: unknown[] = [organizationId];
+  const conditions = concernedDays(where, (given) => `$${bind.push(given)}`);
+  const marked = await execute(`UPDATE days d SET is_stale = TRUE WHERE d.organization_id = $1 AND NOT d.is_stale AND ${conditions}`, bind);
   if (marked > 0) await queueRecompute(organizationId);
   return marked;
 }

@@ -2,6 +2,7 @@ import { recordAudit } from "../lib/audit";
 import { AppError } from "../lib/errors";
 import type { Actor } from "../lib/policy";
 import type { User } from "../models/user";
+import { keepAnAdministrator } from "./set-grants";
 
 /**
  * Ends a person's access at their next request. The provider's identity is let go, so that the same person can be
@@ -19,5 +20,11 @@ export async function revokeUser(actor: Actor, user: User): Promise<void> {
     expectedSubject: expectedSubject ?? subject,
     revision: user.revision + 1,
   });
-  await recordAudit(actor, { action: "revoke-user", subjectKind: "user", subjectId: user.id, values: { issuer, subject } });
+  await keepAnAdministrator();
+  await recordAudit(actor, {
+    action: "revoke-user",
+    subjectKind: "user",
+    subjectId: user.id,
+    values: { issuer, subject },
+  });
 }

@@ -8,7 +8,11 @@ import { programmePolicy } from "../policies";
 type NominalDay = JobInput["tasks"];
 
 /** @throws AppError not-found or invalid, unless each task is one of the job's site and named once, within a day. */
-export async function checkNominalDay(actor: Actor, siteId: string, tasks: NominalDay): Promise<void> {
+export async function checkNominalDay(
+  actor: Actor,
+  siteId: string,
+  tasks: NominalDay,
+): Promise<void> {
   if (tasks.length === 0) return;
   const found = await rows<{ id: string; siteId: string }>(
     `SELECT t.id, t.site_id AS "siteId" FROM tasks t WHERE t.id IN (:ids) AND ${visible(programmePolicy, actor, "t")}`,
@@ -22,7 +26,8 @@ export async function checkNominalDay(actor: Actor, siteId: string, tasks: Nomin
     ...(ids.indexOf(id) === index ? [] : [issue(["tasks", index, "taskId"], "task-twice")]),
   ]);
   const sumMin = tasks.reduce((sum, { durationMin }) => sum + durationMin, 0);
-  if (sumMin > 1440) issues.push(issue(["tasks"], "tasks-longer-than-day", { sumMin, overMin: sumMin - 1440 }));
+  if (sumMin > 1440)
+    issues.push(issue(["tasks"], "tasks-longer-than-day", { sumMin, overMin: sumMin - 1440 }));
   if (issues.length > 0) throw unprocessable(issues);
 }
 

@@ -13,9 +13,12 @@ export async function saveRequirementReason(
 ): Promise<boolean> {
   authorize(requirementPolicy, actor, "change", worker);
   const reason = text || null;
-  const before = await row<{ reason: string }>("SELECT reason FROM worker_requirement_reasons WHERE worker_id = :id", {
-    id: worker.id,
-  });
+  const before = await row<{ reason: string }>(
+    "SELECT reason FROM worker_requirement_reasons WHERE worker_id = :id",
+    {
+      id: worker.id,
+    },
+  );
   if ((before?.reason ?? null) === reason) return false;
   if (reason === null) {
     await execute("DELETE FROM worker_requirement_reasons WHERE worker_id = $1", [worker.id]);

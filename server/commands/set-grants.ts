@@ -1,6 +1,6 @@
 import type { z } from "zod";
 import type { GrantInput } from "../../shared/schemas/user";
-import { rows } from "../lib/db";
+import { execute, rows } from "../lib/db";
 import { forbidden, issue, notFound, unprocessable } from "../lib/errors";
 import { type Actor, findVisible, type Role } from "../lib/policy";
 import { Site } from "../models/site";
@@ -16,10 +16,15 @@ interface Held {
 
 const key = ({ role, siteId }: Grant) => `${role} ${siteId ?? "everywhere"}`;
 
+/** Asks the database now, and not at the commit, whether somebody is left who administers. */
+export const keepAnAdministrator = () => execute("SET CONSTRAINTS keep_an_administrator IMMEDIATE");
+
 /** A user's worker has to be one of the organization; a worker's role without one would show nothing. */
 export async function checkLink(workerId: string | null, grants: readonly Grant[]): Promise<void> {
   if (workerId !== null) {
-    const [worker] = await rows<{ id: string }>("SELECT id FROM workers WHERE id = :workerId", { workerId });
+    const [worker] = await rows<{ id: string }>("SELECT id FROM workers WHERE id = :workerId", {
+      workerId,
+    });
     if (!worker) throw notFound();
   } else if (grants.some(({ role }) => role === "worker")) {
     throw unprocessable([issue(["workerId"], "worker-needed")]);
@@ -31,7 +36,9 @@ export async function checkLink(workerId: string | null, grants: readonly Grant[
  * revokes beyond the sites that they administer.
  */
 export async function setGrants(actor: Actor, userId: string, wanted: readonly Grant[]) {
-  const twice = wanted.findIndex((grant, index) => wanted.findIndex((other) => key(other) === key(grant)) < index);
+  const twice = wanted.findIndex(
+    (grant, index) => wanted.findIndex((other) => key(other) === key(grant)) < index,
+  );
   if (twice >= 0) throw unprocessable([issue(["grants", twice], "grant-twice")]);
   const held = await rows<Held>(
     `SELECT id, role, site_id AS "siteId" FROM role_grants WHERE user_id = :userId AND revoked_at IS NULL FOR UPDATE`,
@@ -40,17 +47,28 @@ export async function setGrants(actor: Actor, userId: string, wanted: readonly G
   const added = wanted.filter((grant) => !held.some((other) => key(other) === key(grant)));
   const revoked = held.filter((grant) => !wanted.some((other) => key(other) === key(grant)));
   for (const { siteId } of [...added, ...revoked]) {
-    const isOurs = siteId === null
-      ? actor.grants.some((grant) => grant.role === "administrator" && grant.siteId === null)
-      : actor.isAt((await findVisible(Site, sitePolicy, siteId, actor)).id, "administrator");
+    const isOurs =
+      siteId === null
+        ? actor.grants.some((grant) => grant.role === "administrator" && grant.siteId === null)
+        : actor.isAt((await findVisible(Site, sitePolicy, siteId, actor)).id, "administrator");
     if (!isOurs) throw forbidden();
   }
   if (revoked.length > 0) {
-    await RoleGrant.update({ revokedAt: new Date() }, { where: { id: revoked.map(({ id }) => id) } });
+    await RoleGrant.update(
+      { revokedAt: new Date() },
+      { where: { id: revoked.map(({ id }) => id) } },
+    );
   }
   await RoleGrant.bulkCreate(
-    added.map(({ role, siteId }) => ({ organizationId: actor.organizationId, userId, role, siteId, grantedBy: actor.userId })),
+    added.map(({ role, siteId }) => ({
+      organizationId: actor.organizationId,
+      userId,
+      role,
+      siteId,
+      grantedBy: actor.userId,
+    })),
   );
+  await keepAnAdministrator();
   const plain = ({ role, siteId }: Grant) => ({ role, siteId });
   return { added: added.map(plain), revoked: revoked.map(plain) };
 }

@@ -5,7 +5,15 @@ import type { Actor } from "../lib/policy";
 
 export async function setOwnLanguage(actor: Actor, language: Language): Promise<void> {
   if (actor.language === language) return;
-  await execute("UPDATE users SET language = $2, revision = revision + 1 WHERE id = $1", [actor.userId, language]);
+  await execute("UPDATE users SET language = $2, revision = revision + 1 WHERE id = $1", [
+    actor.userId,
+    language,
+  ]);
   const values = { language: { from: actor.language, to: language } };
-  await recordAudit(actor, { action: "set-own-language", subjectKind: "user", subjectId: actor.userId, values });
+  await recordAudit(actor, {
+    action: "set-own-language",
+    subjectKind: "user",
+    subjectId: actor.userId,
+    values,
+  });
 }

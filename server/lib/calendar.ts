@@ -8,7 +8,9 @@ export const todayAt = (timeZone: string): string =>
 
 /** Calendar days later; dates have no zone. */
 export function addDays(isoDate: string, days: number): string {
-  return new Date(Date.parse(`${isoDate}T00:00:00Z`) + days * 86_400_000).toISOString().slice(0, 10);
+  return new Date(Date.parse(`${isoDate}T00:00:00Z`) + days * 86_400_000)
+    .toISOString()
+    .slice(0, 10);
 }
 
 const earliest = "1950-01-01";

@@ -1,5 +1,5 @@
-import { dateIssues } from "./calendar";
 import type { ProblemIssue } from "../../shared/schemas/problem";
+import { dateIssues } from "./calendar";
 import { issue, unprocessable } from "./errors";
 
 /** SQL: the half-open range of days whose last one is given, or none. */
@@ -8,7 +8,8 @@ export const daysFromTo = (from: string, to: string) => `daterange(${from}::date
 /** What is wrong with a span of days, the last one included. */
 export function spanIssues(fromDate: string, toDate: string | null): ProblemIssue[] {
   const issues = [...dateIssues(["fromDate"], fromDate), ...dateIssues(["toDate"], toDate, 3660)];
-  if (toDate !== null && toDate < fromDate) issues.push(issue(["toDate"], "ends-before-start", { fromDate }));
+  if (toDate !== null && toDate < fromDate)
+    issues.push(issue(["toDate"], "ends-before-start", { fromDate }));
   return issues;
 }
 

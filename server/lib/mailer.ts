@@ -1,3 +1,4 @@
+import { Readable } from "node:stream";
 import nodemailer, { type Transporter } from "nodemailer";
 
 export interface OutgoingMail {
@@ -15,12 +16,8 @@ export type MailOutcome =
 
 interface SmtpError extends Error {
   code?: string;
-  command?: string;
   responseCode?: number;
 }
-
-/** Commands before the message itself: a failure there means that nothing was handed over. */
-const beforeMessage = /^(CONN|EHLO|HELO|STARTTLS|AUTH|MAIL FROM|RCPT TO)/;
 
 export class Mailer {
   private readonly transport: Transporter;
@@ -40,14 +37,23 @@ export class Mailer {
   }
 
   async send({ to, ...mail }: OutgoingMail): Promise<MailOutcome> {
+    // A line that breaks is reported alike at every stage. Once the transport reads the message, which it does only when
+    // connected and signed in, the server may have it.
+    let mayHaveIt = false;
+    const text = Readable.from(
+      (function* () {
+        mayHaveIt = true;
+        yield mail.text;
+      })(),
+    );
     try {
-      await this.transport.sendMail({ ...mail, to, from: this.from, headers: { "Auto-Submitted": "auto-generated" } });
+      await this.transport.sendMail({ ...mail, text, to, from: this.from, headers: { "Auto-Submitted": "auto-generated" } });
       return { kind: "sent" };
     } catch (thrown) {
       const error = thrown as SmtpError;
       const said = [error.code, error.responseCode].filter(Boolean).join(" ") || error.name;
       if (error.responseCode !== undefined) return { kind: error.responseCode >= 500 ? "never" : "later", error: said };
-      return { kind: beforeMessage.test(error.command ?? "") || error.code === "ECONNREFUSED" ? "later" : "unknown", error: said };
+      return { kind: mayHaveIt ? "unknown" : "later", error: said };
     }
   }
 

@@ -6,7 +6,8 @@ export function containsWords(expression: string, text: string) {
   const words = text.split(/\s+/).filter(Boolean).slice(0, 6);
   const patterns = words.map((word) => `%${word.replace(/[\\%_]/g, "\\$&")}%`);
   return {
-    condition: patterns.map((_, index) => `${expression} LIKE lower(:word${index})`).join(" AND ") || "TRUE",
+    condition:
+      patterns.map((_, index) => `${expression} LIKE lower(:word${index})`).join(" AND ") || "TRUE",
     values: Object.fromEntries(patterns.map((pattern, index) => [`word${index}`, pattern])),
   };
 }

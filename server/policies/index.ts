@@ -21,6 +21,7 @@ export const sitePolicy = policy<{ id: string }>()({
     create: (actor) => actor.grants.some(({ role, siteId }) => role === "administrator" && siteId === null),
     change: (actor, { id }) => actor.isAt(id, "administrator"),
     changeRules: (actor, { id }) => actor.isAt(id, "officer"),
+    export: (actor, { id }) => actor.isAt(id, "officer", "auditor"),
   },
 });
 

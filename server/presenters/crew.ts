@@ -1,5 +1,5 @@
 import type { CrewDetail, CrewView } from "../../shared/schemas/crew";
-import { abilities, type Actor } from "../lib/policy";
+import { type Actor, abilities } from "../lib/policy";
 import { crewPolicy } from "../policies";
 import type { CrewRow, MembershipRow, SupervisorRow } from "../queries/crews";
 
@@ -27,15 +27,17 @@ export function presentCrewDetail(
 ): CrewDetail {
   return {
     ...presentCrew(actor, row),
-    memberships: memberships.map(({ id, workerId, workerName, employeeNumber, isLoan, fromDate, toDate }) => ({
-      id,
-      workerId,
-      workerName,
-      employeeNumber,
-      isLoan,
-      fromDate,
-      toDate,
-    })),
+    memberships: memberships.map(
+      ({ id, workerId, workerName, employeeNumber, isLoan, fromDate, toDate }) => ({
+        id,
+        workerId,
+        workerName,
+        employeeNumber,
+        isLoan,
+        fromDate,
+        toDate,
+      }),
+    ),
     supervisors: supervisors.map(({ id, userId, userName, fromDate, toDate }) => ({
       id,
       userId,

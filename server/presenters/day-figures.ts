@@ -1,7 +1,9 @@
 import type { DayFigures } from "../../shared/schemas/finding";
 
 /** Columns of a `day_results` row that make up its figures; the deciding task's name comes with them. */
-export const DAY_FIGURES_COLUMNS = (r: string) => `${r}.id AS "resultId", ${r}.date::text AS date, ${r}.origin,
+export const DAY_FIGURES_COLUMNS = (
+  r: string,
+) => `${r}.id AS "resultId", ${r}.date::text AS date, ${r}.origin,
   ${r}.outside_db AS "outsideDb", ${r}.outside_bound AS "outsideBound", ${r}.at_ear_db AS "atEarDb",
   ${r}.at_ear_active_db AS "atEarActiveDb", ${r}.at_ear_as_worked_db AS "atEarAsWorkedDb",
   ${r}.uncertainty_db AS "uncertaintyDb", ${r}.while_worn_db AS "whileWornDb",
@@ -35,7 +37,14 @@ export function presentDayFigures(row: DayFiguresRow): DayFigures {
     ruleSetKey: row.ruleSetKey,
     ruleSetVersion: row.ruleSetVersion,
     governingCriteria: row.governingCriteria.map(
-      ({ criterionId, verdict, isClear, levelDb, dosePct, reason }) => ({ criterionId, verdict, isClear, levelDb, dosePct, reason }),
+      ({ criterionId, verdict, isClear, levelDb, dosePct, reason }) => ({
+        criterionId,
+        verdict,
+        isClear,
+        levelDb,
+        dosePct,
+        reason,
+      }),
     ),
   };
 }

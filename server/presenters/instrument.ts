@@ -1,5 +1,5 @@
 import type { InstrumentView } from "../../shared/schemas/run";
-import { abilities, type Actor } from "../lib/policy";
+import { type Actor, abilities } from "../lib/policy";
 import { programmePolicy } from "../policies";
 import type { InstrumentRow } from "../queries/instruments";
 

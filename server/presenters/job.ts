@@ -1,4 +1,4 @@
-import { abilities, type Actor } from "../lib/policy";
+import { type Actor, abilities } from "../lib/policy";
 import { programmePolicy } from "../policies";
 import type { JobRow } from "../queries/jobs";
 

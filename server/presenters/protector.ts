@@ -1,6 +1,6 @@
 import type { z } from "zod";
 import type { ProtectorDetail, ProtectorView } from "../../shared/schemas/protector";
-import { abilities, type Actor } from "../lib/policy";
+import { type Actor, abilities } from "../lib/policy";
 import { protectorPolicy } from "../policies";
 import type { ProtectorRevisionRow, ProtectorRow } from "../queries/protectors";
 
@@ -20,7 +20,11 @@ function presentFacts({ id, number, effectiveFrom, data }: ProtectorRevisionRow)
   };
 }
 
-export function presentProtector(actor: Actor, row: ProtectorRow, revision: ProtectorRevisionRow | undefined): ProtectorView {
+export function presentProtector(
+  actor: Actor,
+  row: ProtectorRow,
+  revision: ProtectorRevisionRow | undefined,
+): ProtectorView {
   if (!revision) throw new Error("a protector has data from its first day on");
   return {
     id: row.id,
@@ -40,7 +44,11 @@ export function presentProtectorDetail(
   revisions: readonly ProtectorRevisionRow[],
 ): z.infer<typeof ProtectorDetail> {
   return {
-    ...presentProtector(actor, row, revisions.find(({ isInForce }) => isInForce)),
+    ...presentProtector(
+      actor,
+      row,
+      revisions.find(({ isInForce }) => isInForce),
+    ),
     history: revisions.map((revision) => ({
       ...presentFacts(revision),
       reason: revision.reason,

@@ -1,6 +1,6 @@
 import type { SiteView } from "../../shared/schemas/site";
 import { todayAt } from "../lib/calendar";
-import { abilities, type Actor } from "../lib/policy";
+import { type Actor, abilities } from "../lib/policy";
 import { sitePolicy } from "../policies";
 import type { SettingsRow, SiteRow } from "../queries/sites";
 
@@ -21,7 +21,8 @@ function presentSettings(row: SettingsRow) {
 export function presentSite(actor: Actor, row: SiteRow): SiteView {
   const today = todayAt(row.timeZone);
   // A site that opens later has settings, but none in force yet: its first ones stand for what will be.
-  const settings = row.history.find(({ effectiveFrom }) => effectiveFrom <= today) ?? row.history.at(-1);
+  const settings =
+    row.history.find(({ effectiveFrom }) => effectiveFrom <= today) ?? row.history.at(-1);
   if (!settings) throw new Error("a site has settings from its first day on");
   return {
     id: row.id,

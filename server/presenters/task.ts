@@ -1,6 +1,6 @@
 import type { z } from "zod";
 import type { TaskLevelView, TaskView } from "../../shared/schemas/task";
-import { abilities, type Actor } from "../lib/policy";
+import { type Actor, abilities } from "../lib/policy";
 import { programmePolicy } from "../policies";
 import type { TaskLevelRow, TaskRow } from "../queries/tasks";
 
@@ -15,7 +15,10 @@ export function presentTaskLevel(row: TaskLevelRow): z.infer<typeof TaskLevelVie
     lcMinusLaDb: row.lcMinusLaDb,
     octaveBandsDb: row.octaveBandsDb,
     lasMaxDb: row.lasMaxDb,
-    peak: peakDb === null || peakWeighting === null ? null : { levelDb: peakDb, weighting: peakWeighting },
+    peak:
+      peakDb === null || peakWeighting === null
+        ? null
+        : { levelDb: peakDb, weighting: peakWeighting },
     samplesDb: row.samplesDb,
     instrument: row.instrument,
     grade: row.grade,

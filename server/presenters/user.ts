@@ -1,5 +1,5 @@
 import type { UserView } from "../../shared/schemas/user";
-import { abilities, type Actor } from "../lib/policy";
+import { type Actor, abilities } from "../lib/policy";
 import { userPolicy } from "../policies";
 import type { UserRow } from "../queries/users";
 

@@ -1,5 +1,5 @@
 import type { WorkerRow, WorkerView } from "../../shared/schemas/worker";
-import { abilities, type Actor } from "../lib/policy";
+import { type Actor, abilities } from "../lib/policy";
 import { workerPolicy } from "../policies";
 import type { WorkerDetailRow, WorkerListRow } from "../queries/workers";
 import { presentAssignment } from "./assignment";

@@ -10,7 +10,8 @@ export type AuditEventRow = Omit<AuditEventView, "at"> & { at: Date };
 /** The trail, the latest first. */
 export async function pageOfAuditEvents(actor: Actor, filter: AuditEventFilter) {
   const before = decodeCursor(filter.cursor, 1)?.[0] ?? null;
-  if (before !== null && !/^\d{1,18}$/.test(String(before))) throw unprocessable([issue(["cursor"], "cursor-unknown")]);
+  if (before !== null && !/^\d{1,18}$/.test(String(before)))
+    throw unprocessable([issue(["cursor"], "cursor-unknown")]);
   const conditions = [
     "e.organization_id = :organizationId",
     visible(auditPolicy, actor, "e"),

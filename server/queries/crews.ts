@@ -26,10 +26,14 @@ export async function listCrews(
   );
 }
 
-const dates = (range: string) => `lower(${range})::text AS "fromDate", (upper(${range}) - 1)::text AS "toDate"`;
+const dates = (range: string) =>
+  `lower(${range})::text AS "fromDate", (upper(${range}) - 1)::text AS "toDate"`;
 
 /** Memberships of a crew; a supervisor meets those of the time in which the crew was theirs. */
-export async function listMemberships(actor: Actor, crew: { id: string; siteId: string }): Promise<MembershipRow[]> {
+export async function listMemberships(
+  actor: Actor,
+  crew: { id: string; siteId: string },
+): Promise<MembershipRow[]> {
   const isWhole = actor.isAt(crew.siteId, "officer", "auditor");
   return rows<MembershipRow>(
     `SELECT m.id, m.worker_id AS "workerId", w.name AS "workerName", w.employee_number AS "employeeNumber", m.is_loan AS "isLoan", ${dates("m.valid")}

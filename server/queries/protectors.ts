@@ -5,7 +5,11 @@ import { rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
 import { protectorPolicy } from "../policies";
 
-export type ProtectorRow = z.infer<typeof ProtectorInput> & { id: string; revision: number; wearersToday: number };
+export type ProtectorRow = z.infer<typeof ProtectorInput> & {
+  id: string;
+  revision: number;
+  wearersToday: number;
+};
 export interface ProtectorRevisionRow {
   id: string;
   modelId: string;
@@ -18,7 +22,10 @@ export interface ProtectorRevisionRow {
   isInForce: boolean;
 }
 
-export async function listProtectors(actor: Actor, id: string | null = null): Promise<ProtectorRow[]> {
+export async function listProtectors(
+  actor: Actor,
+  id: string | null = null,
+): Promise<ProtectorRow[]> {
   return rows<ProtectorRow>(
     `SELECT m.id, m.name, m.kind, m.is_archived AS "isArchived", m.revision,
        (SELECT count(DISTINCT a.worker_id)::int FROM assignments a

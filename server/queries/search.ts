@@ -8,9 +8,18 @@ const most = 8;
 
 /** The first of each kind whose name, or a worker's number, has every word of the text in it. */
 export async function searchByName(actor: Actor, text: string): Promise<SearchView> {
-  const find = <Row extends object>(columns: string, from: string, expression: string, isVisible: string, order: string) => {
+  const find = <Row extends object>(
+    columns: string,
+    from: string,
+    expression: string,
+    isVisible: string,
+    order: string,
+  ) => {
     const { condition, values } = containsWords(expression, text);
-    return rows<Row>(`SELECT ${columns} FROM ${from} WHERE ${isVisible} AND ${condition} ORDER BY ${order} LIMIT ${most}`, values);
+    return rows<Row>(
+      `SELECT ${columns} FROM ${from} WHERE ${isVisible} AND ${condition} ORDER BY ${order} LIMIT ${most}`,
+      values,
+    );
   };
   return {
     workers: await find(

@@ -1,8 +1,8 @@
+import type { z } from "zod";
 import type { TaskLevelView, TaskView } from "../../shared/schemas/task";
 import { row, rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
 import { programmePolicy } from "../policies";
-import type { z } from "zod";
 
 type LevelView = z.infer<typeof TaskLevelView>;
 export type TaskRow = Omit<TaskView, "can" | "level">;

@@ -5,7 +5,14 @@ import { rows } from "../lib/db";
 import { issue, unprocessable } from "../lib/errors";
 import { type Actor, visible } from "../lib/policy";
 import { containsWords } from "../lib/search-words";
-import { crewPolicy, dayPolicy, findingPolicy, requirementPolicy, workerNamePolicy, workerPolicy } from "../policies";
+import {
+  crewPolicy,
+  dayPolicy,
+  findingPolicy,
+  requirementPolicy,
+  workerNamePolicy,
+  workerPolicy,
+} from "../policies";
 import { DAY_FIGURES_COLUMNS, type MaybeDayFiguresRow } from "../presenters/day-figures";
 import { listAssignments } from "./assignments";
 
@@ -20,14 +27,16 @@ const uuid = /^[0-9a-f]{8}(-[0-9a-f]{4}){3}-[0-9a-f]{12}$/;
 /** One page in the order of names, each row with its last day and its open findings, in one query. */
 export async function pageOfWorkers(actor: Actor, filter: z.infer<typeof WorkerFilter>) {
   const after = decodeCursor(filter.cursor, 2);
-  if (after && !uuid.test(String(after[1]))) throw unprocessable([issue(["cursor"], "cursor-unknown")]);
+  if (after && !uuid.test(String(after[1])))
+    throw unprocessable([issue(["cursor"], "cursor-unknown")]);
   const search = containsWords(nameAndNumber("w"), filter.search ?? "");
   const conditions = [
     "w.organization_id = :organizationId",
     visible(workerPolicy, actor, "w"),
     search.condition,
     filter.siteId && "w.site_id = :siteId",
-    filter.crewId && "EXISTS (SELECT 1 FROM crew_memberships m WHERE m.worker_id = w.id AND m.crew_id = :crewId AND m.valid @> current_date)",
+    filter.crewId &&
+      "EXISTS (SELECT 1 FROM crew_memberships m WHERE m.worker_id = w.id AND m.crew_id = :crewId AND m.valid @> current_date)",
     filter.includeLeft === "false" && "(w.left_on IS NULL OR w.left_on >= current_date)",
     after && "(w.name, w.id) > (:afterName, CAST(:afterId AS uuid))",
   ].filter(Boolean);

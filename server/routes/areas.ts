@@ -11,12 +11,18 @@ import { may, programmePolicy, sitePolicy } from "../policies";
 import { presentArea } from "../presenters/area";
 import { listAreas } from "../queries/areas";
 
-const view = async (actor: Actor, id: string) => presentArea(actor, only(await listAreas(actor, { id })));
+const view = async (actor: Actor, id: string) =>
+  presentArea(actor, only(await listAreas(actor, { id })));
 
 export function defineAreaRoutes(): void {
   endpoint.get(
     "/areas",
-    { summary: "Areas and their zones", may: may.readProgramme, query: AtSiteQuery, reply: AreaList },
+    {
+      summary: "Areas and their zones",
+      may: may.readProgramme,
+      query: AtSiteQuery,
+      reply: AreaList,
+    },
     async ({ actor, query }) => ({
       rows: (await listAreas(actor, query)).map((area) => presentArea(actor, area)),
     }),

@@ -1,6 +1,12 @@
 import { literal, Op } from "sequelize";
 import { IdParams } from "../../shared/schemas/common";
-import { AssignmentEnd, AssignmentInput, AssignmentList, AssignmentView, ManyAssignmentsInput } from "../../shared/schemas/worker";
+import {
+  AssignmentEnd,
+  AssignmentInput,
+  AssignmentList,
+  AssignmentView,
+  ManyAssignmentsInput,
+} from "../../shared/schemas/worker";
 import { assignProtector } from "../commands/assign-protector";
 import { endAssignment } from "../commands/end-assignment";
 import { endpoint } from "../lib/endpoint";
@@ -14,12 +20,17 @@ import { assignmentPolicy, may, workerPolicy } from "../policies";
 import { presentAssignment } from "../presenters/assignment";
 import { listAssignments } from "../queries/assignments";
 
-const view = async (actor: Actor, id: string) => presentAssignment(only(await listAssignments(actor, { ids: [id] })));
+const view = async (actor: Actor, id: string) =>
+  presentAssignment(only(await listAssignments(actor, { ids: [id] })));
 
 /** These workers, locked in one order whoever asks, in the order of the request. */
 async function workersToAssign(actor: Actor, ids: readonly string[]): Promise<Worker[]> {
   const condition = literal(visible(workerPolicy, actor, `"${Worker.name}"`));
-  const found = await Worker.findAll({ where: { id: [...ids], [Op.and]: [condition] }, order: [["id", "ASC"]], lock: true });
+  const found = await Worker.findAll({
+    where: { id: [...ids], [Op.and]: [condition] },
+    order: [["id", "ASC"]],
+    lock: true,
+  });
   const byId = new Map(found.map((worker) => [worker.id, worker]));
   return ids.map((id) => {
     const worker = byId.get(id);
@@ -32,10 +43,17 @@ async function workersToAssign(actor: Actor, ids: readonly string[]): Promise<Wo
 export function defineAssignmentRoutes(): void {
   endpoint.get(
     "/workers/:id/assignments",
-    { summary: "A worker's protectors by use and date", may: may.readDays, params: IdParams, reply: AssignmentList },
+    {
+      summary: "A worker's protectors by use and date",
+      may: may.readDays,
+      params: IdParams,
+      reply: AssignmentList,
+    },
     async ({ actor, params }) => {
       const worker = await findVisible(Worker, workerPolicy, params.id, actor);
-      return { rows: (await listAssignments(actor, { workerId: worker.id })).map(presentAssignment) };
+      return {
+        rows: (await listAssignments(actor, { workerId: worker.id })).map(presentAssignment),
+      };
     },
   );
 
@@ -50,7 +68,10 @@ export function defineAssignmentRoutes(): void {
     },
     async ({ actor, params, body }) => {
       const workers = await workersToAssign(actor, [params.id]);
-      const ids = await assignProtector(actor, workers, body, { field: (name) => [name], worker: (_, name) => [name] });
+      const ids = await assignProtector(actor, workers, body, {
+        field: (name) => [name],
+        worker: (_, name) => [name],
+      });
       return view(actor, only(ids));
     },
   );
@@ -84,7 +105,9 @@ export function defineAssignmentRoutes(): void {
       needsRevision: true,
     },
     async ({ actor, params, body, ifMatch }) => {
-      const assignment = await findVisible(Assignment, assignmentPolicy, params.id, actor, { lock: true });
+      const assignment = await findVisible(Assignment, assignmentPolicy, params.id, actor, {
+        lock: true,
+      });
       const worker = await findVisible(Worker, workerPolicy, assignment.workerId, actor);
       authorize(assignmentPolicy, actor, "change", worker);
       await requireRevision(assignment, ifMatch, () => view(actor, assignment.id));

@@ -7,7 +7,12 @@ import { pageOfAuditEvents } from "../queries/audit-events";
 export function defineAuditRoutes(): void {
   endpoint.get(
     "/audit-events",
-    { summary: "Who changed what, and when", may: may.readTrail, query: AuditEventFilter, reply: AuditEventPage },
+    {
+      summary: "Who changed what, and when",
+      may: may.readTrail,
+      query: AuditEventFilter,
+      reply: AuditEventPage,
+    },
     async ({ actor, query }) => {
       const { rows, next } = await pageOfAuditEvents(actor, query);
       return { rows: rows.map(presentAuditEvent), next };

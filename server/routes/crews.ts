@@ -1,6 +1,13 @@
 import { z } from "zod";
 import { AtSiteQuery, IdParams } from "../../shared/schemas/common";
-import { CrewDetail, CrewInput, CrewList, DatedEnd, MembershipInput, SupervisorInput } from "../../shared/schemas/crew";
+import {
+  CrewDetail,
+  CrewInput,
+  CrewList,
+  DatedEnd,
+  MembershipInput,
+  SupervisorInput,
+} from "../../shared/schemas/crew";
 import { addCrewMember } from "../commands/add-crew-member";
 import { addCrewSupervisor } from "../commands/add-crew-supervisor";
 import { changeCrew } from "../commands/change-crew";
@@ -20,7 +27,12 @@ const SpanParams = IdParams.extend({ spanId: z.uuid() });
 
 async function view(actor: Actor, id: string) {
   const crew = only(await listCrews(actor, { id }));
-  return presentCrewDetail(actor, crew, await listMemberships(actor, crew), await listSupervisors(id));
+  return presentCrewDetail(
+    actor,
+    crew,
+    await listMemberships(actor, crew),
+    await listSupervisors(id),
+  );
 }
 
 /** The crew, locked, where this actor may change it. */
@@ -34,12 +46,19 @@ export function defineCrewRoutes(): void {
   endpoint.get(
     "/crews",
     { summary: "Crews", may: may.readCrews, query: AtSiteQuery, reply: CrewList },
-    async ({ actor, query }) => ({ rows: (await listCrews(actor, query)).map((crew) => presentCrew(actor, crew)) }),
+    async ({ actor, query }) => ({
+      rows: (await listCrews(actor, query)).map((crew) => presentCrew(actor, crew)),
+    }),
   );
 
   endpoint.get(
     "/crews/:id",
-    { summary: "One crew with its dated members and supervisors", may: may.readCrews, params: IdParams, reply: CrewDetail },
+    {
+      summary: "One crew with its dated members and supervisors",
+      may: may.readCrews,
+      params: IdParams,
+      reply: CrewDetail,
+    },
     async ({ actor, params }) => view(actor, params.id),
   );
 
@@ -74,7 +93,13 @@ export function defineCrewRoutes(): void {
 
   endpoint.post(
     "/crews/:id/memberships",
-    { summary: "Put a worker into a crew from a date on", may: may.officer, params: IdParams, body: MembershipInput, reply: CrewDetail },
+    {
+      summary: "Put a worker into a crew from a date on",
+      may: may.officer,
+      params: IdParams,
+      body: MembershipInput,
+      reply: CrewDetail,
+    },
     async ({ actor, params, body }) => {
       const crew = await crewToChange(actor, params.id);
       const worker = await findVisible(Worker, workerPolicy, body.workerId, actor);
@@ -85,7 +110,13 @@ export function defineCrewRoutes(): void {
 
   endpoint.post(
     "/crews/:id/supervisors",
-    { summary: "Give a crew a supervisor from a date on", may: may.officer, params: IdParams, body: SupervisorInput, reply: CrewDetail },
+    {
+      summary: "Give a crew a supervisor from a date on",
+      may: may.officer,
+      params: IdParams,
+      body: SupervisorInput,
+      reply: CrewDetail,
+    },
     async ({ actor, params, body }) => {
       const crew = await crewToChange(actor, params.id);
       await addCrewSupervisor(actor, crew, body);
@@ -93,11 +124,15 @@ export function defineCrewRoutes(): void {
     },
   );
 
-  for (const [part, kind] of [["memberships", "member"], ["supervisors", "supervisor"]] as const) {
+  for (const [part, kind] of [
+    ["memberships", "member"],
+    ["supervisors", "supervisor"],
+  ] as const) {
     endpoint.patch(
       `/crews/:id/${part}/:spanId`,
       {
-        summary: kind === "member" ? "Last day of a membership" : "Last day of a supervisor with a crew",
+        summary:
+          kind === "member" ? "Last day of a membership" : "Last day of a supervisor with a crew",
         may: may.officer,
         params: SpanParams,
         body: DatedEnd,

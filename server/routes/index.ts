@@ -1,5 +1,6 @@
 import type { Config } from "../config";
 import { defineEvaluateRoutes } from "./evaluate";
+import { defineExportRoutes } from "./exports";
 import { defineAreaRoutes } from "./areas";
 import { defineAssignmentRoutes } from "./assignments";
 import { defineAuditRoutes } from "./audit-events";
@@ -10,6 +11,7 @@ import { defineFindingRoutes } from "./findings";
 import { defineInstrumentRoutes } from "./instruments";
 import { defineJobRoutes } from "./jobs";
 import { defineNoticeRoutes } from "./notices";
+import { definePreviewRoutes } from "./previews";
 import { defineProtectorRoutes } from "./protectors";
 import { defineRuleSetRoutes } from "./rule-sets";
 import { defineRunRoutes } from "./runs";
@@ -22,6 +24,7 @@ import { defineWorkerRoutes } from "./workers";
 /** Every resource's routes, declared once per process. */
 export function defineRoutes(config: Config<"web">): void {
   defineEvaluateRoutes();
+  defineExportRoutes(config);
   defineDayEntryRoutes();
   defineDayRoutes();
   defineFindingRoutes();
@@ -33,6 +36,7 @@ export function defineRoutes(config: Config<"web">): void {
   defineCrewRoutes();
   defineInstrumentRoutes();
   defineJobRoutes();
+  definePreviewRoutes();
   defineProtectorRoutes();
   defineRuleSetRoutes();
   defineSearchRoutes();

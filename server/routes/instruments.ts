@@ -12,7 +12,8 @@ import { may, programmePolicy, sitePolicy } from "../policies";
 import { presentInstrument } from "../presenters/instrument";
 import { listInstruments } from "../queries/instruments";
 
-const view = async (actor: Actor, id: string) => presentInstrument(actor, only(await listInstruments(actor, { id })));
+const view = async (actor: Actor, id: string) =>
+  presentInstrument(actor, only(await listInstruments(actor, { id })));
 
 /** The instrument's site, where this actor may put one. */
 async function checkSite(actor: Actor, siteId: string): Promise<void> {
@@ -23,15 +24,27 @@ async function checkSite(actor: Actor, siteId: string): Promise<void> {
 export function defineInstrumentRoutes(): void {
   endpoint.get(
     "/instruments",
-    { summary: "Dosimeters, meters and calibrators", may: may.readProgramme, query: AtSiteQuery, reply: InstrumentList },
+    {
+      summary: "Dosimeters, meters and calibrators",
+      may: may.readProgramme,
+      query: AtSiteQuery,
+      reply: InstrumentList,
+    },
     async ({ actor, query }) => ({
-      rows: (await listInstruments(actor, query)).map((instrument) => presentInstrument(actor, instrument)),
+      rows: (await listInstruments(actor, query)).map((instrument) =>
+        presentInstrument(actor, instrument),
+      ),
     }),
   );
 
   endpoint.post(
     "/instruments",
-    { summary: "Add an instrument", may: may.officer, body: InstrumentInput, reply: InstrumentView },
+    {
+      summary: "Add an instrument",
+      may: may.officer,
+      body: InstrumentInput,
+      reply: InstrumentView,
+    },
     async ({ actor, body }) => {
       await checkSite(actor, body.siteId);
       const instrument = await createInstrument(actor, body);
@@ -50,7 +63,9 @@ export function defineInstrumentRoutes(): void {
       needsRevision: true,
     },
     async ({ actor, params, body, ifMatch }) => {
-      const instrument = await findVisible(Instrument, programmePolicy, params.id, actor, { lock: true });
+      const instrument = await findVisible(Instrument, programmePolicy, params.id, actor, {
+        lock: true,
+      });
       authorize(programmePolicy, actor, "change", instrument);
       await requireRevision(instrument, ifMatch, () => view(actor, instrument.id));
       await checkSite(actor, body.siteId);

@@ -12,13 +12,21 @@ import { may, programmePolicy, sitePolicy } from "../policies";
 import { presentJob } from "../presenters/job";
 import { listJobs } from "../queries/jobs";
 
-const view = async (actor: Actor, id: string) => presentJob(actor, only(await listJobs(actor, { id })));
+const view = async (actor: Actor, id: string) =>
+  presentJob(actor, only(await listJobs(actor, { id })));
 
 export function defineJobRoutes(): void {
   endpoint.get(
     "/jobs",
-    { summary: "Jobs with their nominal day", may: may.readProgramme, query: AtSiteQuery, reply: JobList },
-    async ({ actor, query }) => ({ rows: (await listJobs(actor, query)).map((job) => presentJob(actor, job)) }),
+    {
+      summary: "Jobs with their nominal day",
+      may: may.readProgramme,
+      query: AtSiteQuery,
+      reply: JobList,
+    },
+    async ({ actor, query }) => ({
+      rows: (await listJobs(actor, query)).map((job) => presentJob(actor, job)),
+    }),
   );
 
   endpoint.post(

@@ -1,5 +1,11 @@
 import { IdParams } from "../../shared/schemas/common";
-import { NewProtectorInput, ProtectorDetail, ProtectorInput, ProtectorList, ProtectorRevisionInput } from "../../shared/schemas/protector";
+import {
+  NewProtectorInput,
+  ProtectorDetail,
+  ProtectorInput,
+  ProtectorList,
+  ProtectorRevisionInput,
+} from "../../shared/schemas/protector";
 import { addProtectorRevision } from "../commands/add-protector-revision";
 import { changeProtector } from "../commands/change-protector";
 import { createProtector } from "../commands/create-protector";
@@ -20,10 +26,17 @@ async function view(actor: Actor, id: string) {
 export function defineProtectorRoutes(): void {
   endpoint.get(
     "/protectors",
-    { summary: "The register of protectors, with the data in force", may: may.readProgramme, reply: ProtectorList },
+    {
+      summary: "The register of protectors, with the data in force",
+      may: may.readProgramme,
+      reply: ProtectorList,
+    },
     async ({ actor }) => {
       const protectors = await listProtectors(actor);
-      const revisions = await listProtectorRevisions(protectors.map(({ id }) => id), "in-force");
+      const revisions = await listProtectorRevisions(
+        protectors.map(({ id }) => id),
+        "in-force",
+      );
       const dataOf = new Map(revisions.map((revision) => [revision.modelId, revision]));
       return { rows: protectors.map((row) => presentProtector(actor, row, dataOf.get(row.id))) };
     },
@@ -31,13 +44,23 @@ export function defineProtectorRoutes(): void {
 
   endpoint.get(
     "/protectors/:id",
-    { summary: "One protector with the history of its data", may: may.readProgramme, params: IdParams, reply: ProtectorDetail },
+    {
+      summary: "One protector with the history of its data",
+      may: may.readProgramme,
+      params: IdParams,
+      reply: ProtectorDetail,
+    },
     async ({ actor, params }) => view(actor, params.id),
   );
 
   endpoint.post(
     "/protectors",
-    { summary: "Add a protector with its first data", may: may.officer, body: NewProtectorInput, reply: ProtectorDetail },
+    {
+      summary: "Add a protector with its first data",
+      may: may.officer,
+      body: NewProtectorInput,
+      reply: ProtectorDetail,
+    },
     async ({ actor, body }) => {
       authorize(protectorPolicy, actor, "change", {});
       const model = await createProtector(actor, body);
@@ -56,7 +79,9 @@ export function defineProtectorRoutes(): void {
       needsRevision: true,
     },
     async ({ actor, params, body, ifMatch }) => {
-      const model = await findVisible(ProtectorModel, protectorPolicy, params.id, actor, { lock: true });
+      const model = await findVisible(ProtectorModel, protectorPolicy, params.id, actor, {
+        lock: true,
+      });
       authorize(protectorPolicy, actor, "change", model);
       await requireRevision(model, ifMatch, () => view(actor, model.id));
       await changeProtector(actor, model, body);
@@ -74,7 +99,9 @@ export function defineProtectorRoutes(): void {
       reply: ProtectorDetail,
     },
     async ({ actor, params, body }) => {
-      const model = await findVisible(ProtectorModel, protectorPolicy, params.id, actor, { lock: true });
+      const model = await findVisible(ProtectorModel, protectorPolicy, params.id, actor, {
+        lock: true,
+      });
       authorize(protectorPolicy, actor, "change", model);
       await addProtectorRevision(actor, model, body);
       return view(actor, model.id);

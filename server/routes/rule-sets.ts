@@ -5,7 +5,11 @@ import { endpoint } from "../lib/endpoint";
 export function defineRuleSetRoutes(): void {
   endpoint.get(
     "/rule-sets",
-    { summary: "Rule sets with their criteria and citations", may: "signed-in", reply: RuleSetList },
+    {
+      summary: "Rule sets with their criteria and citations",
+      may: "signed-in",
+      reply: RuleSetList,
+    },
     () => ({ rows: [...RULE_SETS] }),
   );
 }

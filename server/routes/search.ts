@@ -6,7 +6,12 @@ import { searchByName } from "../queries/search";
 export function defineSearchRoutes(): void {
   endpoint.get(
     "/search",
-    { summary: "Workers, crews, tasks and protectors by name or number", may: may.readCrews, query: SearchQuery, reply: SearchView },
+    {
+      summary: "Workers, crews, tasks and protectors by name or number",
+      may: may.readCrews,
+      query: SearchQuery,
+      reply: SearchView,
+    },
     async ({ actor, query }) => searchByName(actor, query.q),
   );
 }

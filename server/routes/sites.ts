@@ -1,5 +1,11 @@
 import { IdParams } from "../../shared/schemas/common";
-import { NewSiteInput, SiteInput, SiteList, SiteSettingsInput, SiteView } from "../../shared/schemas/site";
+import {
+  NewSiteInput,
+  SiteInput,
+  SiteList,
+  SiteSettingsInput,
+  SiteView,
+} from "../../shared/schemas/site";
 import { addSiteSettings } from "../commands/add-site-settings";
 import { changeSite } from "../commands/change-site";
 import { createSite } from "../commands/create-site";
@@ -12,24 +18,37 @@ import { may, sitePolicy } from "../policies";
 import { presentSite } from "../presenters/site";
 import { listSites } from "../queries/sites";
 
-const view = async (actor: Actor, id: string) => presentSite(actor, only(await listSites(actor, id)));
+const view = async (actor: Actor, id: string) =>
+  presentSite(actor, only(await listSites(actor, id)));
 
 export function defineSiteRoutes(): void {
   endpoint.get(
     "/sites",
     { summary: "Sites and the rules in force at each", may: may.readSites, reply: SiteList },
-    async ({ actor }) => ({ rows: (await listSites(actor)).map((site) => presentSite(actor, site)) }),
+    async ({ actor }) => ({
+      rows: (await listSites(actor)).map((site) => presentSite(actor, site)),
+    }),
   );
 
   endpoint.get(
     "/sites/:id",
-    { summary: "One site with the history of its rules", may: may.readSites, params: IdParams, reply: SiteView },
+    {
+      summary: "One site with the history of its rules",
+      may: may.readSites,
+      params: IdParams,
+      reply: SiteView,
+    },
     async ({ actor, params }) => view(actor, params.id),
   );
 
   endpoint.post(
     "/sites",
-    { summary: "Add a site with its first rules", may: may.administer, body: NewSiteInput, reply: SiteView },
+    {
+      summary: "Add a site with its first rules",
+      may: may.administer,
+      body: NewSiteInput,
+      reply: SiteView,
+    },
     async ({ actor, body }) => {
       authorize(sitePolicy, actor, "create", { id: "" });
       const site = await createSite(actor, body);

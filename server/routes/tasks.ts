@@ -1,5 +1,11 @@
 import { AtSiteQuery, IdParams } from "../../shared/schemas/common";
-import { NewTaskInput, TaskDetail, TaskInput, TaskLevelInput, TaskList } from "../../shared/schemas/task";
+import {
+  NewTaskInput,
+  TaskDetail,
+  TaskInput,
+  TaskLevelInput,
+  TaskList,
+} from "../../shared/schemas/task";
 import { addTaskLevel } from "../commands/add-task-level";
 import { changeTask } from "../commands/change-task";
 import { createTask } from "../commands/create-task";
@@ -17,19 +23,38 @@ async function view(actor: Actor, id: string) {
   const task = only(await listTasks(actor, { id }));
   const levels = await listTaskLevels([id], "all");
   return {
-    ...presentTask(actor, task, levels.find(({ isInForce }) => isInForce)),
+    ...presentTask(
+      actor,
+      task,
+      levels.find(({ isInForce }) => isInForce),
+    ),
     levels: levels.map(presentTaskLevel),
     shiftsCount: await countShiftsWithTask(id),
   };
 }
 
+/** The task, locked, where this actor may change it. */
+async function taskToChange(actor: Actor, id: string): Promise<Task> {
+  const task = await findVisible(Task, programmePolicy, id, actor, { lock: true });
+  authorize(programmePolicy, actor, "change", task);
+  return task;
+}
+
 export function defineTaskRoutes(): void {
   endpoint.get(
     "/tasks",
-    { summary: "Tasks with the level in force today", may: may.readProgramme, query: AtSiteQuery, reply: TaskList },
+    {
+      summary: "Tasks with the level in force today",
+      may: may.readProgramme,
+      query: AtSiteQuery,
+      reply: TaskList,
+    },
     async ({ actor, query }) => {
       const tasks = await listTasks(actor, query);
-      const levels = await listTaskLevels(tasks.map(({ id }) => id), "in-force");
+      const levels = await listTaskLevels(
+        tasks.map(({ id }) => id),
+        "in-force",
+      );
       const levelOf = new Map(levels.map((level) => [level.taskId, level]));
       return { rows: tasks.map((task) => presentTask(actor, task, levelOf.get(task.id))) };
     },
@@ -37,13 +62,23 @@ export function defineTaskRoutes(): void {
 
   endpoint.get(
     "/tasks/:id",
-    { summary: "One task with all its levels", may: may.readProgramme, params: IdParams, reply: TaskDetail },
+    {
+      summary: "One task with all its levels",
+      may: may.readProgramme,
+      params: IdParams,
+      reply: TaskDetail,
+    },
     async ({ actor, params }) => view(actor, params.id),
   );
 
   endpoint.post(
     "/tasks",
-    { summary: "Add a task, with its level where it is known", may: may.officer, body: NewTaskInput, reply: TaskDetail },
+    {
+      summary: "Add a task, with its level where it is known",
+      may: may.officer,
+      body: NewTaskInput,
+      reply: TaskDetail,
+    },
     async ({ actor, body }) => {
       const site = await findVisible(Site, sitePolicy, body.siteId, actor);
       authorize(programmePolicy, actor, "change", { siteId: site.id });
@@ -63,8 +98,7 @@ export function defineTaskRoutes(): void {
       needsRevision: true,
     },
     async ({ actor, params, body, ifMatch }) => {
-      const task = await findVisible(Task, programmePolicy, params.id, actor, { lock: true });
-      authorize(programmePolicy, actor, "change", task);
+      const task = await taskToChange(actor, params.id);
       await requireRevision(task, ifMatch, () => view(actor, task.id));
       const site = await findVisible(Site, sitePolicy, task.siteId, actor);
       await changeTask(actor, task, site, body);
@@ -82,8 +116,7 @@ export function defineTaskRoutes(): void {
       reply: TaskDetail,
     },
     async ({ actor, params, body }) => {
-      const task = await findVisible(Task, programmePolicy, params.id, actor, { lock: true });
-      authorize(programmePolicy, actor, "change", task);
+      const task = await taskToChange(actor, params.id);
       await addTaskLevel(actor, task, body);
       return view(actor, task.id);
     },

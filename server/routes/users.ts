@@ -14,13 +14,16 @@ import { may, userPolicy } from "../policies";
 import { presentUser } from "../presenters/user";
 import { listUsers } from "../queries/users";
 
-const view = async (actor: Actor, id: string) => presentUser(actor, only(await listUsers(actor, id)));
+const view = async (actor: Actor, id: string) =>
+  presentUser(actor, only(await listUsers(actor, id)));
 
 export function defineUserRoutes(): void {
   endpoint.get(
     "/users",
     { summary: "People who may sign in, and their roles", may: may.administer, reply: UserList },
-    async ({ actor }) => ({ rows: (await listUsers(actor)).map((user) => presentUser(actor, user)) }),
+    async ({ actor }) => ({
+      rows: (await listUsers(actor)).map((user) => presentUser(actor, user)),
+    }),
   );
 
   endpoint.post(

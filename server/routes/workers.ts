@@ -1,5 +1,13 @@
 import { IdParams } from "../../shared/schemas/common";
-import { SignInCodeView, WorkerFilter, WorkerInput, WorkerNameFilter, WorkerNameList, WorkerPage, WorkerView } from "../../shared/schemas/worker";
+import {
+  SignInCodeView,
+  WorkerFilter,
+  WorkerInput,
+  WorkerNameFilter,
+  WorkerNameList,
+  WorkerPage,
+  WorkerView,
+} from "../../shared/schemas/worker";
 import { changeWorker } from "../commands/change-worker";
 import { createWorker } from "../commands/create-worker";
 import { issueSignInCode } from "../commands/issue-sign-in-code";
@@ -13,12 +21,18 @@ import { may, sitePolicy, workerNamePolicy, workerPolicy } from "../policies";
 import { presentWorker, presentWorkerRow } from "../presenters/worker";
 import { findWorkerDetail, findWorkerNames, pageOfWorkers } from "../queries/workers";
 
-const view = async (actor: Actor, id: string) => presentWorker(actor, only(await findWorkerDetail(actor, id)));
+const view = async (actor: Actor, id: string) =>
+  presentWorker(actor, only(await findWorkerDetail(actor, id)));
 
 export function defineWorkerRoutes(): void {
   endpoint.get(
     "/workers",
-    { summary: "Workers by name, with their last day", may: may.readCrews, query: WorkerFilter, reply: WorkerPage },
+    {
+      summary: "Workers by name, with their last day",
+      may: may.readCrews,
+      query: WorkerFilter,
+      reply: WorkerPage,
+    },
     async ({ actor, query }) => {
       const { rows, next } = await pageOfWorkers(actor, query);
       return { rows: rows.map(presentWorkerRow), next };
@@ -27,7 +41,12 @@ export function defineWorkerRoutes(): void {
 
   endpoint.get(
     "/worker-names",
-    { summary: "Names and numbers, to link a sign-in to", may: may.issueCodes, query: WorkerNameFilter, reply: WorkerNameList },
+    {
+      summary: "Names and numbers, to link a sign-in to",
+      may: may.issueCodes,
+      query: WorkerNameFilter,
+      reply: WorkerNameList,
+    },
     async ({ actor, query }) => ({ rows: await findWorkerNames(actor, query.search) }),
   );
 

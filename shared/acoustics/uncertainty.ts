@@ -158,7 +158,7 @@ export function jobSamplingContributionDb(sampleCount: number, scatterDb: number
   let low = 0;
   let high = 1;
   while (landTailShare(sampleCount, high, squares) > 0.05) high *= 2;
-  for (let step = 0; step < 80; step++) {
+  for (let step = 0; step < 45; step++) {
     const middle = (low + high) / 2;
     if (landTailShare(sampleCount, middle, squares) > 0.05) low = middle;
     else high = middle;
@@ -184,7 +184,7 @@ function landTailShare(count: number, depth: number, squares: number): number {
 }
 
 function simpson(f: (x: number) => number, from: number, to: number): number {
-  const steps = 2000;
+  const steps = 400;
   const width = (to - from) / steps;
   let sum = f(from) + f(to);
   for (let i = 1; i < steps; i++) sum += f(from + i * width) * (i % 2 === 1 ? 4 : 2);

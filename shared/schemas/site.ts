@@ -52,5 +52,10 @@ export const ChangePreview = z.object({
   })),
   /** More than the list holds. */
   changedDays: z.number(),
+  /** Days concerned beyond those looked at, which are the latest; 0: all were. */
+  tooMany: z.number(),
 });
 export type ChangePreview = z.infer<typeof ChangePreview>;
+
+/** Days whose inputs have moved and whose result is still the earlier one. */
+export const RecomputeProgress = z.object({ daysLeft: z.number() });

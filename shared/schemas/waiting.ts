@@ -28,6 +28,8 @@ export type WaitingView = z.infer<typeof WaitingView>;
 /** What is missing in a year, before it is exported. */
 export const GapKind = z.enum(["not-measured", "no-protector", "notice-late", "notice-not-sent", "not-assessed"]);
 export const YearQuery = z.object({ siteId: z.uuid(), year: z.coerce.number().int().min(1970).max(2200) });
+/** Workers in the file by employee number, or by name. */
+export const YearFileQuery = YearQuery.extend({ workers: z.enum(["number", "name"]).default("number") });
 export const GapsView = z.object({
   counts: z.array(z.object({ kind: GapKind, count: z.number() })),
   months: z.array(z.object({

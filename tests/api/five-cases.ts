@@ -1,6 +1,6 @@
 import { describe, expect, test } from "vitest";
 import type { Role } from "../../server/lib/policy";
-import { buildSite, buildUser, type Call, nobody, select, signInAs, type Site } from "../factories";
+import { buildSite, buildUser, type Call, nobody, type Site, select, signInAs } from "../factories";
 
 export interface Endpoint {
   /** As in "POST /areas". */
@@ -75,7 +75,9 @@ export function describeEndpoint(endpoint: Endpoint): void {
         expect(answer.headers["content-type"]).toContain("application/problem+json");
         const fields = answer.body.issues.map((found: { path: string[] }) => found.path.join("."));
         if (endpoint.badField) expect(fields).toContain(endpoint.badField);
-        const events = await select("SELECT 1 FROM audit_events WHERE organization_id = $1", [site.organizationId]);
+        const events = await select("SELECT 1 FROM audit_events WHERE organization_id = $1", [
+          site.organizationId,
+        ]);
         expect(events).toHaveLength(0);
       });
     }
@@ -92,8 +94,12 @@ export function describeEndpoint(endpoint: Endpoint): void {
         "SELECT action, actor_id FROM audit_events WHERE organization_id = $1 ORDER BY id",
         [site.organizationId],
       );
-      expect(events.map(({ action }) => action)).toEqual(event ? expect.arrayContaining([event]) : []);
-      expect(new Set(events.map((found) => found.actor_id))).toEqual(new Set(event ? [user.id] : []));
+      expect(events.map(({ action }) => action)).toEqual(
+        event ? expect.arrayContaining([event]) : [],
+      );
+      expect(new Set(events.map((found) => found.actor_id))).toEqual(
+        new Set(event ? [user.id] : []),
+      );
     });
   });
 }

@@ -9,7 +9,11 @@ interface DayOverrides {
 }
 
 /** A judged day of a worker with its current result, without the shift it would rest on. */
-export async function buildDay(worker: Worker, date: string, overrides: DayOverrides = {}): Promise<string> {
+export async function buildDay(
+  worker: Worker,
+  date: string,
+  overrides: DayOverrides = {},
+): Promise<string> {
   const { organizationId, id: workerId, siteId } = worker;
   const { outsideDb = 91.3, atEarDb = 78.2, crewId, decidingTaskId } = overrides;
   const resultId = await insert("day_results", {
@@ -33,9 +37,17 @@ export async function buildDay(worker: Worker, date: string, overrides: DayOverr
     word: "good",
     decidingTaskId,
     hasProtector: "yes",
-    criteria: "[]",
+    criteria: JSON.stringify({ governing: [] }),
     refs: "{}",
   });
-  await insert("days", { organizationId, workerId, date, siteId, crewId, currentResultId: resultId, isStale: false });
+  await insert("days", {
+    organizationId,
+    workerId,
+    date,
+    siteId,
+    crewId,
+    currentResultId: resultId,
+    isStale: false,
+  });
   return resultId;
 }

@@ -5,7 +5,11 @@ let pool: pg.Pool | undefined;
 /** The owner's connection, which sees every organization: tests lay out their rows through it. */
 export function owner(): pg.Pool {
   if (!pool) {
-    pool = new pg.Pool({ connectionString: process.env.OWNER_DATABASE_URL, max: 3, allowExitOnIdle: true });
+    pool = new pg.Pool({
+      connectionString: process.env.OWNER_DATABASE_URL,
+      max: 3,
+      allowExitOnIdle: true,
+    });
     pool.on("error", () => undefined);
   }
   return pool;
@@ -26,7 +30,10 @@ export async function insert(table: string, values: Record<string, unknown>): Pr
 }
 
 /** Rows of a question that a test asks of the database itself. */
-export async function select<Row extends object>(text: string, values: unknown[] = []): Promise<Row[]> {
+export async function select<Row extends object>(
+  text: string,
+  values: unknown[] = [],
+): Promise<Row[]> {
   return (await owner().query(text, values)).rows as Row[];
 }
 

@@ -20,7 +20,13 @@ export async function buildInstrument(overrides: InstrumentOverrides = {}): Prom
   const { site = await buildSite(), ...rest } = overrides;
   const { organizationId, id: siteId } = site;
   const count = next();
-  const facts = { kind: "dosimeter", class: "2", serialNumber: `serial ${count}`, name: `Dosimeter ${count}`, ...rest };
+  const facts = {
+    kind: "dosimeter",
+    class: "2",
+    serialNumber: `serial ${count}`,
+    name: `Dosimeter ${count}`,
+    ...rest,
+  };
   const id = await insert("instruments", { organizationId, siteId, ...facts });
   return { id, organizationId, siteId, serialNumber: facts.serialNumber };
 }

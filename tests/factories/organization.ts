@@ -4,6 +4,8 @@ export interface Organization {
   id: string;
 }
 
-export async function buildOrganization({ name = `Organization ${next()}` } = {}): Promise<Organization> {
+export async function buildOrganization({
+  name = `Organization ${next()}`,
+} = {}): Promise<Organization> {
   return { id: await insert("organizations", { name }) };
 }

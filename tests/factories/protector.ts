@@ -9,7 +9,16 @@ export interface Protector {
   name: string;
 }
 
-const noData = { usRatingDb: null, snrDb: null, hDb: null, mDb: null, lDb: null, slc80Db: null, bands: null, active: null };
+const noData = {
+  usRatingDb: null,
+  snrDb: null,
+  hDb: null,
+  mDb: null,
+  lDb: null,
+  slc80Db: null,
+  bands: null,
+  active: null,
+};
 
 interface ProtectorOverrides {
   organizationId?: string;
@@ -23,10 +32,21 @@ interface ProtectorOverrides {
 /** A model on the register with its first data. */
 export async function buildProtector(overrides: ProtectorOverrides = {}): Promise<Protector> {
   const organizationId = overrides.organizationId ?? (await buildOrganization()).id;
-  const { name = `Protector ${next()}`, kind = "earmuff", isArchived, effectiveFrom = "2020-01-01" } = overrides;
+  const {
+    name = `Protector ${next()}`,
+    kind = "earmuff",
+    isArchived,
+    effectiveFrom = "2020-01-01",
+  } = overrides;
   const id = await insert("protector_models", { organizationId, name, kind, isArchived });
   const data = JSON.stringify({ ...noData, snrDb: 28, usRatingDb: 23, ...overrides.data });
-  await insert("protector_model_revisions", { organizationId, modelId: id, number: 1, effectiveFrom, data });
+  await insert("protector_model_revisions", {
+    organizationId,
+    modelId: id,
+    number: 1,
+    effectiveFrom,
+    data,
+  });
   return { id, organizationId, name };
 }
 
@@ -53,6 +73,11 @@ export async function buildAssignment(overrides: AssignmentOverrides = {}): Prom
   const inner = overrides.inner ?? (await buildProtector({ organizationId }));
   const { taskId, areaId, outer, fromDate = "2021-01-01", toDate = null } = overrides;
   const worn = { innerModelId: inner.id, outerModelId: outer?.id, taskId, areaId };
-  const id = await insert("assignments", { organizationId, workerId, ...worn, valid: daysRange(fromDate, toDate) });
+  const id = await insert("assignments", {
+    organizationId,
+    workerId,
+    ...worn,
+    valid: daysRange(fromDate, toDate),
+  });
   return { id, organizationId, workerId };
 }

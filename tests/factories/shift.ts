@@ -14,7 +14,13 @@ interface ShiftOverrides {
 /** A shift with its first revision, worked in UTC at the worker's site. Returns its id. */
 export async function buildShift(worker: Worker, overrides: ShiftOverrides = {}): Promise<string> {
   const { organizationId, siteId, id: workerId } = worker;
-  const { date = "2026-03-02", localStart = "06:00", lengthMin = 480, crewId = null, tasks = [] } = overrides;
+  const {
+    date = "2026-03-02",
+    localStart = "06:00",
+    lengthMin = 480,
+    crewId = null,
+    tasks = [],
+  } = overrides;
   const [shiftId, shiftRevisionId] = [randomUUID(), randomUUID()];
   // Head and revision name each other, so that one statement writes both.
   await select(
@@ -23,7 +29,17 @@ export async function buildShift(worker: Worker, overrides: ShiftOverrides = {})
        SELECT $1, $3, $4, $5, $6, $7::date, $8::time, 'UTC', $9::int, s, s + make_interval(mins => $9::int), $2
        FROM (SELECT ($7::date + $8::time) AT TIME ZONE 'UTC' AS s) start)
      INSERT INTO shift_revisions (id, organization_id, shift_id, number, local_start, length_min) VALUES ($2, $3, $1, 1, $8::time, $9::int)`,
-    [shiftId, shiftRevisionId, organizationId, siteId, workerId, crewId, date, localStart, lengthMin],
+    [
+      shiftId,
+      shiftRevisionId,
+      organizationId,
+      siteId,
+      workerId,
+      crewId,
+      date,
+      localStart,
+      lengthMin,
+    ],
   );
   for (const [position, task] of tasks.entries()) {
     await insert("shift_tasks", { organizationId, shiftId, shiftRevisionId, position, ...task });

@@ -16,7 +16,7 @@ export function testApp(): Express {
   if (!app) {
     const config = readConfig("web");
     defineModels(connect(config.DATABASE_URL, { max: 4 }));
-    app = createApp(config, createLog("error"));
+    app = createApp(config, createLog(config.LOG_LEVEL));
   }
   return app;
 }
@@ -35,7 +35,7 @@ export interface Call {
 }
 
 export class Client {
-  constructor(private readonly headers: Record<string, string> = {}) {}
+  constructor(readonly headers: Record<string, string> = {}) {}
 
   async send({ method, path, body, revision, key = randomUUID() }: Call): Promise<Response> {
     const sent = request(testApp())[method](`/api${path}`).set(this.headers);
@@ -45,9 +45,12 @@ export class Client {
   }
 
   get = (path: string) => this.send({ method: "get", path });
-  post = (path: string, body: object, key?: string) => this.send({ method: "post", path, body, key });
-  put = (path: string, body: object, revision: number) => this.send({ method: "put", path, body, revision });
-  patch = (path: string, body: object, revision: number) => this.send({ method: "patch", path, body, revision });
+  post = (path: string, body: object, key?: string) =>
+    this.send({ method: "post", path, body, key });
+  put = (path: string, body: object, revision: number) =>
+    this.send({ method: "put", path, body, revision });
+  patch = (path: string, body: object, revision: number) =>
+    this.send({ method: "patch", path, body, revision });
 }
 
 export const nobody = new Client();
@@ -64,7 +67,14 @@ export async function signInAs(user: Pick<User, "id">): Promise<Client> {
   const maxAge = 3_600_000;
   const expires = new Date(Date.now() + maxAge);
   const sess = {
-    cookie: { originalMaxAge: maxAge, expires, httpOnly: true, path: "/", sameSite: "lax", secure: false },
+    cookie: {
+      originalMaxAge: maxAge,
+      expires,
+      httpOnly: true,
+      path: "/",
+      sameSite: "lax",
+      secure: false,
+    },
     userId: user.id,
     organizationId: found.organization_id,
     epoch: found.session_epoch,

@@ -57,6 +57,11 @@ export async function buildArea(overrides: AreaOverrides = {}): Promise<Area> {
   const site = overrides.site ?? (await buildSite());
   const name = overrides.name ?? `Area ${next()}`;
   const { organizationId, id: siteId } = site;
-  const id = await insert("areas", { organizationId, siteId, name, zone: overrides.zone ?? "none" });
+  const id = await insert("areas", {
+    organizationId,
+    siteId,
+    name,
+    zone: overrides.zone ?? "none",
+  });
   return { id, organizationId, siteId, name };
 }

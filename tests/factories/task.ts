@@ -29,7 +29,14 @@ export async function buildTask(overrides: TaskOverrides = {}): Promise<Task> {
   const { levelDb = 88, metric = { kind: "laeq" }, effectiveFrom = "2020-01-01" } = overrides;
   if (levelDb !== null) {
     const { peakDb, peakWeighting } = overrides;
-    const level = { metric: JSON.stringify(metric), levelDb, grade: "task-level", effectiveFrom, peakDb, peakWeighting };
+    const level = {
+      metric: JSON.stringify(metric),
+      levelDb,
+      grade: "task-level",
+      effectiveFrom,
+      peakDb,
+      peakWeighting,
+    };
     await insert("task_levels", { organizationId, taskId: id, number: 1, ...level });
   }
   return { id, organizationId, siteId, name };

@@ -24,7 +24,12 @@ interface UserOverrides {
 export async function buildUser(overrides: UserOverrides = {}): Promise<User> {
   const organizationId = overrides.organizationId ?? (await buildOrganization()).id;
   const count = next();
-  const { name = `Person ${count}`, email = `person-${count}@dinward.example`, workerId, language } = overrides;
+  const {
+    name = `Person ${count}`,
+    email = `person-${count}@dinward.example`,
+    workerId,
+    language,
+  } = overrides;
   const id = await insert("users", { organizationId, name, email, workerId, language });
   for (const role of overrides.roles ?? []) {
     await insert("role_grants", { organizationId, userId: id, role, siteId: overrides.siteId });

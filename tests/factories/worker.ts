@@ -27,7 +27,12 @@ export async function buildWorker(overrides: WorkerOverrides = {}): Promise<Work
   const { site = await buildSite(), ...rest } = overrides;
   const { organizationId, id: siteId } = site;
   const count = next();
-  const facts = { name: `Worker ${count}`, employeeNumber: String(10_000 + count), hiredOn: "2020-01-01", ...rest };
+  const facts = {
+    name: `Worker ${count}`,
+    employeeNumber: String(10_000 + count),
+    hiredOn: "2020-01-01",
+    ...rest,
+  };
   const id = await insert("workers", { organizationId, siteId, ...facts });
   return { id, organizationId, siteId, name: facts.name, employeeNumber: facts.employeeNumber };
 }

@@ -1,10 +1,8 @@
-import { execFile } from "node:child_process";
-import { chmodSync, existsSync, mkdtempSync, readFileSync, rmSync } from "node:fs";
+import { chmodSync, existsSync, mkdtempSync, readdirSync, readFileSync, rmSync } from "node:fs";
 import { createServer } from "node:net";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { setTimeout as sleep } from "node:timers/promises";
-import { promisify } from "node:util";
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
 import { findFreePort, randomPort } from "../../scripts/lib/ports.mjs";
 import { buildApp } from "../setup/app";
@@ -34,15 +32,21 @@ async function waitForLine(demo: RunningProcess, pattern: RegExp): Promise<strin
   }
 }
 
-/** Every process whose command line, or whose database's, names the data folder or was started by it. */
-async function processesOf(pids: number[]): Promise<string[]> {
-  const { stdout } = await promisify(execFile)("ps", ["-eo", "pid=,pgid=,stat=,args="]);
-  return stdout.split("\n").filter((line) => {
-    const [pid, group, state] = line.trim().split(/\s+/);
-    if (state?.startsWith("Z")) return false;
-    const isListed = pids.includes(Number(pid)) || pids.includes(Number(group));
-    return isListed || line.includes(dataFolder);
-  });
+/** Living processes among those given, in their groups, or with the data folder in the command line. */
+function processesOf(pids: number[]): string[] {
+  const found: string[] = [];
+  for (const pid of readdirSync("/proc").filter((name) => /^\d+$/.test(name))) {
+    try {
+      const commandLine = readFileSync(`/proc/${pid}/cmdline`, "utf8").replaceAll("\0", " ");
+      const stat = readFileSync(`/proc/${pid}/stat`, "utf8");
+      const [state, , group] = stat.slice(stat.lastIndexOf(")") + 2).split(" ");
+      const isListed = pids.includes(Number(pid)) || pids.includes(Number(group));
+      if (state !== "Z" && (isListed || commandLine.includes(dataFolder))) found.push(commandLine);
+    } catch {
+      // It ended while we looked.
+    }
+  }
+  return found;
 }
 
 function runningPids(): number[] {
@@ -85,11 +89,11 @@ describe("npm start", () => {
     userId = (await signInAsOfficer()).id;
     const pids = runningPids();
     expect(pids).toHaveLength(4);
-    expect((await processesOf(pids)).length).toBeGreaterThan(4);
+    expect(processesOf(pids).length).toBeGreaterThan(4);
 
     demo.signal("SIGINT");
     expect(await demo.ended).toBe(0);
-    expect(await processesOf(pids)).toEqual([]);
+    expect(processesOf(pids)).toEqual([]);
     expect(existsSync(join(dataFolder, "start.lock"))).toBe(false);
   });
 
@@ -136,7 +140,7 @@ describe("npm start", () => {
     process.kill(children.find(({ name }: { name: string }) => name === "work").pid, "SIGKILL");
     expect(await next.ended).toBe(1);
     expect(next.output()).toMatch(/^dinward: The work process ended unexpectedly/m);
-    expect(await processesOf(runningPidsOf(children))).toEqual([]);
+    expect(processesOf(runningPidsOf(children))).toEqual([]);
   });
 
   test("a dead database is one clear line, and nothing stays", async () => {
@@ -150,7 +154,7 @@ describe("npm start", () => {
       .split("\n")
       .filter((line) => line.startsWith("dinward: "));
     expect(lines).toHaveLength(1);
-    expect(await processesOf(pids)).toEqual([]);
+    expect(processesOf(pids)).toEqual([]);
   });
 
   test("a port in use is one clear line", async () => {

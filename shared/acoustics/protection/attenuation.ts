@@ -110,7 +110,7 @@ function reductionsOfTwo(
     found.push(byBands(level, combinationBands, rule.alpha));
     found.push(byHml(hDb, mDb, lDb, lcLaDb));
     found.push(byRating("snr", snrOfBandsDb(assumedDb), lcLaDb));
-  } else if (inner.bands !== null || outer.bands !== null) {
+  } else {
     found.push(missing("octave-band", "combination-not-tested"));
   }
   if (inner.usRatingDb !== null && outer.usRatingDb !== null) {
@@ -124,7 +124,6 @@ function reductionsOfTwo(
         : missing("us-single-number", "combination-not-tested"),
     );
   }
-  if (found.length === 0) found.push(missing("octave-band", "combination-not-tested"));
   return found;
 }
 

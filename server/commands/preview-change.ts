@@ -1,0 +1,83 @@
+import { evaluateDay } from "../../shared/acoustics/day";
+import { summarizeDay } from "../../shared/day/summarize-day";
+import type { ChangePreview } from "../../shared/schemas/site";
+import { type Concerned, concernedDays } from "./mark-days-stale";
+import { execute, rows } from "../lib/db";
+import { type Actor, visible } from "../lib/policy";
+import { dayPolicy } from "../policies";
+import { hydrateDays, resolveDays, ruleSetsOf } from "../queries/day-inputs";
+
+/** More are not looked at within one request. */
+const MOST_DAYS = 5000;
+const MOST_CHANGES = 200;
+const BATCH = 500;
+
+interface DayNow {
+  workerId: string;
+  workerName: string;
+  date: string;
+  verdictOutside: string | null;
+  verdictAtEar: string | null;
+  word: string | null;
+  total: number;
+}
+
+type Line = ChangePreview["changes"][number]["line"];
+const NONE = "none";
+
+/**
+ * Who would change verdict if a change were made: the change is made, the days it touches are evaluated from the inputs
+ * as they then are, and it is taken back. So the preview can't differ from the change. Compared with the stored results.
+ */
+export async function previewChange(actor: Actor, where: Concerned, change: () => Promise<unknown>): Promise<ChangePreview> {
+  const values: Record<string, string> = {};
+  const value = (given: string) => {
+    const name = `value${Object.keys(values).length}`;
+    values[name] = given;
+    return `:${name}`;
+  };
+  const days = await rows<DayNow>(
+    `SELECT d.worker_id AS "workerId", w.name AS "workerName", d.date::text AS date, r.verdict_outside AS "verdictOutside",
+       r.verdict_at_ear AS "verdictAtEar", r.word, (count(*) OVER ())::int AS total
+     FROM days d JOIN workers w ON w.id = d.worker_id LEFT JOIN day_results r ON r.id = d.current_result_id
+     WHERE ${visible(dayPolicy, actor, "d")} AND ${concernedDays(where, value)}
+     ORDER BY d.date DESC, w.name, d.worker_id LIMIT ${MOST_DAYS}`,
+    values,
+  );
+  const total = days[0]?.total ?? 0;
+  const changes: ChangePreview["changes"] = [];
+  let changedDays = 0;
+  await execute("SAVEPOINT preview");
+  await change();
+  for (let from = 0; from < days.length; from += BATCH) {
+    const batch = days.slice(from, from + BATCH);
+    const after = await evaluateAsTheyStand(batch);
+    for (const day of batch) {
+      const { workerId, workerName, date } = day;
+      const now = after.get(`${workerId} ${date}`);
+      // No shift, or imported: nothing here is computed from what changes.
+      if (!now) continue;
+      const compared: [Line, string | null, string | null][] = [
+        ["without-protection", day.verdictOutside, now.verdictOutside], ["at-the-ear", day.verdictAtEar, now.verdictAtEar], ["protector", day.word, now.word],
+      ];
+      const changed = compared.filter(([, before, then]) => before !== then);
+      if (changed.length === 0) continue;
+      changedDays += 1;
+      for (const [line, before, then] of changed) {
+        if (changes.length < MOST_CHANGES) changes.push({ workerId, workerName, date, line, before: before ?? NONE, after: then ?? NONE });
+      }
+    }
+  }
+  await execute("ROLLBACK TO SAVEPOINT preview");
+  return { days: total, workers: new Set(days.map(({ workerId }) => workerId)).size, changes, changedDays, tooMany: total - days.length };
+}
+
+async function evaluateAsTheyStand(keys: readonly { workerId: string; date: string }[]) {
+  const resolved = await resolveDays(keys);
+  const inputs = await hydrateDays(resolved);
+  return new Map(resolved.map(({ workerId, date, refs }, index) => {
+    const { governing, comparison } = ruleSetsOf(refs);
+    const input = inputs[index]!;
+    return [`${workerId} ${date}`, summarizeDay(input, evaluateDay(input, governing, comparison), governing)];
+  }));
+}

@@ -1,0 +1,112 @@
+import { describe, expect, test } from "vitest";
+import { ENGINE_VECTORS, type EngineVector } from "../../tests/published/vectors";
+import { RULE_SETS, ruleSetVersion } from "../rule-sets";
+import { evaluateDay } from "./day";
+import type { RuleSetVersion } from "./types";
+import { buildWorking, type MathPart, type Working, type WorkingValue } from "./working";
+
+function rulesOf(key: string): RuleSetVersion {
+  const found = ruleSetVersion(key, 1);
+  if (!found) throw new Error(`No rule set ${key}`);
+  return found;
+}
+
+function workingOf({ day, governing, comparison }: EngineVector): Working {
+  return buildWorking(day, rulesOf(governing), comparison.map(rulesOf));
+}
+
+function evaluationOf({ day, governing, comparison }: EngineVector) {
+  return evaluateDay(day, rulesOf(governing), comparison.map(rulesOf));
+}
+
+/** Results of a step's equations, in order. */
+function resultsOf(working: Working, title: string): WorkingValue[] {
+  const step = working.steps.find((one) => one.title.id === title);
+  return (step?.equations ?? []).flatMap(({ parts }) =>
+    parts.flatMap((part: MathPart) => (part.kind === "value" && part.isResult ? [part.value] : [])),
+  );
+}
+
+const named = (name: string): EngineVector => {
+  const vector = ENGINE_VECTORS.find((one) => one.name.startsWith(name));
+  if (!vector) throw new Error(`No vector ${name}`);
+  return vector;
+};
+
+describe.each(ENGINE_VECTORS)("working of $name", (vector) => {
+  test("steps and equations are numbered from 1, every number is finite and the rows fit their columns", () => {
+    const working = workingOf(vector);
+    expect(working.steps.map(({ number }) => number)).toEqual(
+      working.steps.map((_, index) => index + 1),
+    );
+    const equations = working.steps.flatMap((step) => step.equations.map(({ number }) => number));
+    expect(equations).toEqual(equations.map((_, index) => index + 1));
+    // JSON writes what is not finite as null, and a value of a kind has no null in it.
+    expect(JSON.stringify(working)).not.toMatch(/"(db|min|pct|number)":null/);
+    for (const { columns, rows } of working.steps.flatMap(({ tables }) => tables)) {
+      for (const { cells } of rows) expect(cells).toHaveLength(columns.length);
+    }
+  });
+
+  test("a result at hand gives the same working as one computed again", () => {
+    const again = buildWorking(
+      vector.day,
+      rulesOf(vector.governing),
+      vector.comparison.map(rulesOf),
+      evaluationOf(vector),
+    );
+    expect(again).toEqual(workingOf(vector));
+  });
+});
+
+describe("the equations end in the evaluation's own numbers", () => {
+  test("outside and at the ear by energy, with the uncertainty", () => {
+    const vector = named("sampled tasks");
+    const working = workingOf(vector);
+    const evaluation = evaluationOf(vector);
+    const [outside] = resultsOf(working, "Noise without protection, over the day");
+    const [uncertainty] = resultsOf(working, "How sure that is");
+    const [atEar] = resultsOf(working, "The day at the ear, wearing time included");
+    expect(outside).toMatchObject({ kind: "level" });
+    expect((outside as { db: number }).db).toBeCloseTo(evaluation.outsideDb!, 9);
+    expect((uncertainty as { db: number }).db).toBe(evaluation.uncertaintyDb);
+    expect((atEar as { db: number }).db).toBe(evaluation.atEarDb);
+  });
+
+  test("dose and TWA", () => {
+    const vector = named("steady levels");
+    const [dose, twa] = resultsOf(workingOf(vector), "Noise without protection, over the day");
+    const result = evaluationOf(vector).criteria[0]!;
+    expect((dose as { pct: number }).pct).toBeCloseTo(result.dosePct!, 9);
+    expect((twa as { db: number }).db).toBeCloseTo(result.levelDb!, 9);
+  });
+
+  test("the governing method's day is the day at the ear", () => {
+    const vector = named("sampled tasks");
+    const step = workingOf(vector).steps.find(({ title }) =>
+      title.id.startsWith("The day at the ear"),
+    );
+    const row = step?.tables[0]?.rows.find(({ isEmphasized }) => isEmphasized);
+    expect(row?.cells[1]).toEqual({ kind: "level", db: evaluationOf(vector).atEarDb });
+  });
+
+  test("shares of the uncertainty make a whole", () => {
+    const step = workingOf(named("sampled tasks")).steps.find(
+      ({ title }) => title.id === "How sure that is",
+    );
+    expect(step?.shares.reduce((sum, { pct }) => sum + pct, 0)).toBeCloseTo(100, 9);
+  });
+});
+
+test("what is open is said: no equation without a result, the reason in the verdicts", () => {
+  const working = workingOf(named("unknown time"));
+  expect(resultsOf(working, "Noise without protection, over the day")).toEqual([]);
+  const [ear] = working.lines;
+  expect(ear).toMatchObject({ id: "at-the-ear", level: null });
+});
+
+test("every rule set of the demo's world has a working", () => {
+  const { day } = named("four unsteady");
+  for (const ruleSet of RULE_SETS)
+    expect(buildWorking(day, ruleSet, []).steps.length).toBeGreaterThan(1);
+});

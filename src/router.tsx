@@ -1,0 +1,60 @@
+import type { I18n } from "@lingui/core";
+import type { QueryClient } from "@tanstack/react-query";
+import { createBrowserRouter, redirect } from "react-router-dom";
+import { sessionQuery } from "./features/session/session";
+import { addCatalogue, isLocale } from "../shared/i18n";
+import { paths } from "./paths";
+import { dayRoutes } from "./routes/day-routes";
+import { RouteError } from "./routes/route-error";
+import { homeOf } from "./routes/home";
+import { Loading } from "./routes/loading";
+import { officerRoutes } from "./routes/officer-routes";
+import { peopleRoutes } from "./routes/people-routes";
+import { registerRoutes } from "./routes/register-routes";
+import { SignedIn } from "./routes/signed-in";
+
+export function createRouter(queryClient: QueryClient, i18n: I18n) {
+  /** Nobody signed in: to the sign-in page, and back here afterwards. */
+  const requireUser = async ({ request }: { request: Request }) => {
+    const { user, pendingName } = await queryClient.ensureQueryData(sessionQuery);
+    const url = new URL(request.url);
+    if (!user) throw redirect(pendingName ? paths.noAccess : `${paths.signIn}?returnTo=${encodeURIComponent(url.pathname + url.search)}`);
+    if (!document.cookie.includes("dinward.locale=") && isLocale(user.language) && user.language !== i18n.locale) {
+      const { chooseLocale } = await import("./lib/i18n");
+      await chooseLocale(i18n, user.language);
+    }
+    // A worker's own page does without the words of the office.
+    if (user.roles.some((role) => role !== "worker")) await addCatalogue(i18n, "office");
+    return null;
+  };
+
+  return createBrowserRouter([
+    {
+      errorElement: <RouteError />,
+      hydrateFallbackElement: <Loading />,
+      children: [
+        { path: paths.signIn, lazy: () => import("./routes/sign-in") },
+        { path: paths.signedOut, lazy: () => import("./routes/signed-out") },
+        { path: paths.noAccess, lazy: () => import("./routes/no-access") },
+        {
+          element: <SignedIn />,
+          loader: requireUser,
+          shouldRevalidate: () => false,
+          children: [
+            {
+              index: true,
+              loader: async () => {
+                const { user } = await queryClient.ensureQueryData(sessionQuery);
+                return user ? redirect(homeOf(user)) : redirect(paths.signIn);
+              },
+            },
+            {
+              errorElement: <RouteError />,
+              children: [...dayRoutes, ...officerRoutes, ...registerRoutes, ...peopleRoutes, { path: "*", lazy: () => import("./routes/not-found") }],
+            },
+          ],
+        },
+      ],
+    },
+  ]);
+}

@@ -1,0 +1,12 @@
+import type { SessionUser } from "../../shared/schemas/session";
+import { hasRole } from "../features/session/session";
+import { paths } from "../paths";
+
+/** Where somebody's day begins: with several roles, the one that has most to do. */
+export function homeOf(user: Pick<SessionUser, "roles">): string {
+  if (hasRole(user, "officer")) return paths.waiting;
+  if (hasRole(user, "supervisor")) return paths.crewSheet;
+  if (hasRole(user, "auditor")) return paths.yearFile;
+  if (hasRole(user, "administrator")) return paths.people;
+  return paths.me;
+}

@@ -1,0 +1,3 @@
+import type { RouteObject } from "react-router-dom";
+
+export const officerRoutes: RouteObject[] = [];

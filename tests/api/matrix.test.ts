@@ -1,0 +1,129 @@
+import { beforeAll, describe, expect, test } from "vitest";
+import { routes } from "../../server/lib/endpoint";
+import { ROLES, type Role } from "../../server/lib/policy";
+import {
+  buildSite,
+  buildUser,
+  buildWorker,
+  type Call,
+  type Client,
+  signInAs,
+  testApp,
+} from "../factories";
+
+const everybody = "officer supervisor worker auditor administrator";
+
+/** Which roles a route lets in at all; every other role gets 403, whatever it asks for. */
+const matrix: Record<string, string> = {
+  "GET /areas": "officer supervisor auditor",
+  "POST /areas": "officer",
+  "PUT /areas/:id": "officer",
+  "POST /assignments/many": "officer",
+  "PATCH /assignments/:id": "officer",
+  "GET /audit-events": "auditor administrator",
+  "GET /auth/callback": "public",
+  "GET /auth/sign-in": "public",
+  "POST /auth/sign-out": "public",
+  "POST /auth/worker-code": "public",
+  "GET /crews": "officer supervisor auditor",
+  "POST /crews": "officer",
+  "GET /crews/:id": "officer supervisor auditor",
+  "PUT /crews/:id": "officer",
+  "POST /crews/:id/memberships": "officer",
+  "PATCH /crews/:id/memberships/:spanId": "officer",
+  "POST /crews/:id/supervisors": "officer",
+  "PATCH /crews/:id/supervisors/:spanId": "officer",
+  "POST /evaluate": everybody,
+  "GET /instruments": "officer supervisor auditor",
+  "POST /instruments": "officer",
+  "PUT /instruments/:id": "officer",
+  "GET /jobs": "officer supervisor auditor",
+  "POST /jobs": "officer",
+  "PUT /jobs/:id": "officer",
+  "PUT /me/settings": everybody,
+  "GET /protectors": "officer supervisor auditor",
+  "POST /protectors": "officer",
+  "GET /protectors/:id": "officer supervisor auditor",
+  "PUT /protectors/:id": "officer",
+  "POST /protectors/:id/revisions": "officer",
+  "GET /rule-sets": everybody,
+  "GET /search": "officer supervisor auditor",
+  "GET /session": "public",
+  "GET /sites": "officer supervisor auditor administrator",
+  "POST /sites": "administrator",
+  "GET /sites/:id": "officer supervisor auditor administrator",
+  "PUT /sites/:id": "administrator",
+  "POST /sites/:id/settings": "officer",
+  "GET /tasks": "officer supervisor auditor",
+  "POST /tasks": "officer",
+  "GET /tasks/:id": "officer supervisor auditor",
+  "PUT /tasks/:id": "officer",
+  "POST /tasks/:id/levels": "officer",
+  "GET /users": "administrator",
+  "POST /users": "administrator",
+  "PUT /users/:id": "administrator",
+  "POST /users/:id/revoke": "administrator",
+  "GET /worker-names": "officer administrator",
+  "GET /workers": "officer supervisor auditor",
+  "POST /workers": "officer",
+  "GET /workers/:id": "officer supervisor worker auditor",
+  "PUT /workers/:id": "officer",
+  "GET /workers/:id/assignments": "officer supervisor worker auditor",
+  "POST /workers/:id/assignments": "officer",
+  "POST /workers/:id/sign-in-codes": "officer administrator",
+};
+
+testApp();
+const nameOf = (route: (typeof routes)[number]) => `${route.method.toUpperCase()} ${route.path}`;
+
+test("every route has its row, and every row its route", () => {
+  expect(Object.keys(matrix).toSorted()).toEqual(routes.map(nameOf).toSorted());
+});
+
+test("public are the ways in, and nothing else", () => {
+  const open = routes.filter(({ spec }) => spec.may === "public").map(nameOf);
+  expect(open.toSorted()).toEqual(
+    Object.keys(matrix)
+      .filter((name) => matrix[name] === "public")
+      .toSorted(),
+  );
+});
+
+describe("role × route", () => {
+  const clients = new Map<Role, Client>();
+
+  beforeAll(async () => {
+    const site = await buildSite();
+    const worker = await buildWorker({ site });
+    for (const role of ROLES) {
+      const workerId = role === "worker" ? worker.id : undefined;
+      clients.set(
+        role,
+        await signInAs(
+          await buildUser({ organizationId: site.organizationId, roles: [role], workerId }),
+        ),
+      );
+    }
+  });
+
+  const rows = Object.entries(matrix).filter(([, allowed]) => allowed !== "public");
+  test.each(rows)("%s: %s", async (name, allowed) => {
+    const [method = "", path = ""] = name.split(" ");
+    const nobodys = path
+      .replace(/:date/g, "2026-01-01")
+      .replace(/:\w+/g, () => crypto.randomUUID());
+    const outcomes = await Promise.all(
+      ROLES.map(async (role) => {
+        // An empty request about nothing: let in, it is refused for what it lacks, or finds nothing.
+        const { status } = await clients
+          .get(role)!
+          .send({ method: method.toLowerCase() as Call["method"], path: nobodys, revision: 1 });
+        expect(status).not.toBe(401);
+        expect(status).toBeLessThan(500);
+        return status === 403 ? [] : [role];
+      }),
+    );
+    const inOrder = (roles: string) => ROLES.filter((role) => roles.split(" ").includes(role));
+    expect(outcomes.flat()).toEqual(inOrder(allowed));
+  });
+});

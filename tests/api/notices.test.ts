@@ -1,0 +1,153 @@
+import { afterEach, describe, expect, inject, test } from "vitest";
+import { readConfig } from "../../server/config";
+import { lookAfter } from "../../server/jobs/look-after";
+import { sendNotice } from "../../server/jobs/send-notice";
+import { Mailer } from "../../server/lib/mailer";
+import { buildCrew, buildJob, buildOrganization, buildSite, buildTask, buildUser, buildWorker, daysFromToday, select, signInAs } from "../factories";
+import { Mailbox } from "../setup/services";
+
+const mailbox = new Mailbox(inject("services").mailsUrl);
+const { SMTP_URL, MAIL_FROM, PUBLIC_URL } = readConfig("work");
+const mailer = new Mailer(SMTP_URL, MAIL_FROM);
+afterEach(() => mailbox.behave("accept"));
+
+interface Row {
+  id: string;
+  audience: string;
+  state: string;
+  tries: number;
+  message_id: string;
+  unknown_outcomes: number;
+}
+
+/** A worker in noise without a protector, saved by the officer: three people are to be told. */
+async function buildNotices() {
+  const { id: organizationId } = await buildOrganization();
+  const site = await buildSite({ organizationId, governingRuleSet: "uk-2005", timeZone: "Europe/London" });
+  const task = await buildTask({ site, name: "Run-up", levelDb: 98, metric: { kind: "steady" } });
+  const job = await buildJob({ site, tasks: [{ taskId: task.id, durationMin: 480 }] });
+  const workers = [await buildWorker({ site, jobId: job.id, name: "R. Szabó" }), await buildWorker({ site, jobId: job.id, name: "D. Tavernor" })];
+  const officer = await buildUser({ organizationId, roles: ["officer"], name: "S. Ferrand" });
+  const supervisor = await buildUser({ organizationId, roles: ["supervisor"], language: "de" });
+  const told = await buildUser({ organizationId, roles: ["worker"], workerId: workers[0]!.id });
+  const crew = await buildCrew({ site, members: workers, supervisors: [supervisor] });
+  const client = await signInAs(officer);
+  const row = (workerId: string, more: object = {}) => ({ kind: "worked", workerId, localStart: "06:00", lengthMin: 480, tasks: [{ taskId: task.id, durationMin: 480 }], ...more });
+  const save = (rows: object[]) => client.post(`/crews/${crew.id}/day`, { date: daysFromToday(-1), rows });
+  const saved = await save(workers.map(({ id }) => row(id)));
+  const { entryId } = saved.body;
+  const notices = () => select<Row>("SELECT * FROM notices WHERE organization_id = $1 AND state <> 'withdrawn' ORDER BY created_at, audience", [organizationId]);
+  const send = ({ id }: Row) => sendNotice({ organizationId, noticeId: id }, mailer, PUBLIC_URL);
+  return { organizationId, client, entryId, saved, save, row, workers, officer, supervisor, told, notices, send };
+}
+
+describe("the outbox", () => {
+  test("one mail a person and entry; nothing before its time; held; sent now in the reader's language", async () => {
+    const { client, entryId, notices, send, supervisor, told } = await buildNotices();
+    expect((await notices()).map(({ audience, state }) => [audience, state])).toEqual([["officer", "waiting"], ["supervisor", "waiting"], ["worker", "waiting"]]);
+    for (const notice of await notices()) await send(notice);
+    expect((await notices()).map(({ state }) => state)).toEqual(["waiting", "waiting", "waiting"]);
+
+    const held = await client.post(`/entries/${entryId}/notices/actions`, { action: "hold" });
+    expect(held.body).toMatchObject({ state: "held", people: 3 });
+    for (const notice of await notices()) await send(notice);
+    expect((await notices()).every(({ state }) => state === "held")).toBe(true);
+
+    await client.post(`/entries/${entryId}/notices/actions`, { action: "send-now" });
+    for (const notice of await notices()) await send(notice);
+    expect((await notices()).every(({ state }) => state === "sent")).toBe(true);
+    const [toSupervisor] = await mailbox.mails({ to: supervisor.email });
+    expect(toSupervisor?.subject).toContain("2");
+    expect(toSupervisor?.text).toContain("R. Szabó");
+    expect(toSupervisor?.text).toContain("D. Tavernor");
+    const [toWorker] = await mailbox.mails({ to: told.email });
+    expect(toWorker?.subject).not.toMatch(/\d+\s*(dB|decibel)|hearing|noise/i);
+    expect(toWorker?.text).not.toContain("D. Tavernor");
+    // A second run of the job finds nothing to do.
+    for (const notice of await notices()) await send(notice);
+    expect(await mailbox.mails({ to: told.email })).toHaveLength(1);
+    const again = await client.post(`/entries/${entryId}/notices/actions`, { action: "hold" });
+    expect(again.status).toBe(409);
+    expect(again.body.code).toBe("notice-sent-already");
+  });
+
+  test("an address that the server refuses for good is a failure that shows, and nothing is tried again", async () => {
+    const { client, entryId, notices, send } = await buildNotices();
+    await client.post(`/entries/${entryId}/notices/actions`, { action: "send-now" });
+    await mailbox.behave("refuse");
+    const [first] = await notices();
+    await send(first!);
+    expect((await notices()).find(({ id }) => id === first!.id)).toMatchObject({ state: "failed", tries: 1 });
+    const waiting = await client.get("/waiting");
+    expect(waiting.body.troubled.map(({ id }: { id: string }) => id)).toEqual([first!.id]);
+  });
+
+  test("the mail server is busy: the notice waits and the queue tries again", async () => {
+    const { client, entryId, notices, send } = await buildNotices();
+    await client.post(`/entries/${entryId}/notices/actions`, { action: "send-now" });
+    await mailbox.behave("fail-once");
+    const [first] = await notices();
+    await expect(send(first!)).rejects.toThrow();
+    expect((await notices()).find(({ id }) => id === first!.id)).toMatchObject({ state: "waiting", tries: 1 });
+    await mailbox.behave("accept");
+    await send(first!);
+    expect((await notices()).find(({ id }) => id === first!.id)).toMatchObject({ state: "sent", tries: 2 });
+  });
+
+  test("an outcome nobody knows shows as possibly sent, is tried once more under the same Message-ID, and rests", async () => {
+    const { client, entryId, notices, send, told } = await buildNotices();
+    await client.post(`/entries/${entryId}/notices/actions`, { action: "send-now" });
+    await mailbox.behave("drop-after-data");
+    const toWorker = (await notices()).find(({ audience }) => audience === "worker")!;
+    await expect(send(toWorker)).rejects.toThrow();
+    const state = async () => (await notices()).find(({ id }) => id === toWorker.id);
+    expect(await state()).toMatchObject({ state: "possibly-sent", unknown_outcomes: 1 });
+    await send(toWorker);
+    expect(await state()).toMatchObject({ state: "possibly-sent", unknown_outcomes: 2, tries: 2 });
+    await send(toWorker);
+    expect(await state()).toMatchObject({ tries: 2 });
+    const ids = new Set((await mailbox.mails({ to: told.email })).map(({ messageId }) => messageId));
+    expect([...ids].every((id) => id === toWorker.message_id)).toBe(true);
+  });
+
+  test("a process that died while sending: found again, retried once under the same Message-ID", async () => {
+    const { organizationId, client, entryId, notices, send } = await buildNotices();
+    await client.post(`/entries/${entryId}/notices/actions`, { action: "send-now" });
+    const [first] = await notices();
+    await select("UPDATE notices SET state = 'sending', tries = 1, attempted_at = now() - interval '10 minutes' WHERE id = $1", [first!.id]);
+    await select("DELETE FROM graphile_worker._private_jobs");
+    await lookAfter();
+    const jobs = await select<{ key: string }>("SELECT key FROM graphile_worker.jobs WHERE key = $1", [`notice:${first!.id}`]);
+    expect(jobs).toHaveLength(1);
+    await send(first!);
+    expect((await notices()).find(({ id }) => id === first!.id)).toMatchObject({ state: "sent", unknown_outcomes: 1, tries: 2 });
+    expect(organizationId).toBeTruthy();
+  });
+
+  test("a correction after sending tells the same people that it replaces the earlier", async () => {
+    const { client, entryId, notices, send, save, row, workers, told, saved } = await buildNotices();
+    await client.post(`/entries/${entryId}/notices/actions`, { action: "send-now" });
+    for (const notice of await notices()) await send(notice);
+    const { shiftId, revision } = saved.body.saved[0].shift;
+    await save([row(workers[0]!.id, { shiftId, revision, reason: "was in the control room", tasks: [], unaccounted: { how: "quiet", levelDb: 60 } })]);
+    const correction = (await notices()).filter(({ state }) => state === "waiting");
+    expect(correction.map(({ audience }) => audience)).toEqual(["officer", "supervisor", "worker"]);
+    await select("UPDATE notices SET not_before = now() WHERE state = 'waiting'");
+    for (const notice of correction) await send(notice);
+    const mails = await mailbox.mails({ to: told.email });
+    expect(mails).toHaveLength(2);
+    expect(mails[1]?.text).toMatch(/This replaces/);
+    expect(mails[1]?.text).toMatch(/not over the limit after all/);
+  });
+
+  test("a notice can be read before it goes; a foreign organization's is not there", async () => {
+    const { client, entryId, notices } = await buildNotices();
+    const [first] = await notices();
+    const text = await client.get(`/notices/${first!.id}`);
+    expect(text.body).toMatchObject({ isSent: false });
+    expect(text.body.text).toContain("R. Szabó");
+    const stranger = await signInAs(await buildUser({ roles: ["officer"] }));
+    expect((await stranger.get(`/notices/${first!.id}`)).status).toBe(404);
+    expect((await stranger.post(`/entries/${entryId}/notices/actions`, { action: "hold" })).status).toBe(404);
+  });
+});

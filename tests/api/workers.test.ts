@@ -1,0 +1,626 @@
+import { describe, expect, test } from "vitest";
+import { hashCode } from "../../server/auth/routes";
+import {
+  buildArea,
+  buildAssignment,
+  buildCrew,
+  buildDay,
+  buildJob,
+  buildProtector,
+  buildSite,
+  buildSupervisorOf,
+  buildTask,
+  buildUser,
+  buildWorker,
+  daysFromToday,
+  insert,
+  type Site,
+  select,
+  signInAs,
+} from "../factories";
+import { describeEndpoint } from "./five-cases";
+
+const workerBody = (site: Site) => ({
+  siteId: site.id,
+  employeeNumber: "5501",
+  name: "Anneke Ruhl",
+  hiredOn: "2024-02-01",
+});
+
+describeEndpoint({
+  route: "GET /workers",
+  as: "officer",
+  not: "administrator",
+  event: null,
+  bad: { path: "?cursor=garbage" },
+  badField: "cursor",
+  namesNothing: true,
+  call: async (site) => {
+    await buildWorker({ site });
+    return { method: "get", path: "/workers" };
+  },
+});
+describeEndpoint({
+  route: "GET /worker-names",
+  as: "administrator",
+  not: "auditor",
+  event: null,
+  bad: { path: `&search=${"x".repeat(101)}` },
+  namesNothing: true,
+  call: async (site) => {
+    await buildWorker({ site });
+    return { method: "get", path: "/worker-names?search=worker" };
+  },
+});
+describeEndpoint({
+  route: "GET /workers/:id",
+  as: "auditor",
+  not: "administrator",
+  event: null,
+  bad: { path: "x" },
+  call: async (site) => ({ method: "get", path: `/workers/${(await buildWorker({ site })).id}` }),
+});
+describeEndpoint({
+  route: "POST /workers",
+  as: "officer",
+  not: "supervisor",
+  event: "create-worker",
+  bad: { body: { hiredOn: daysFromToday(400) } },
+  badField: "hiredOn",
+  call: async (site) => ({
+    method: "post",
+    path: "/workers",
+    body: { ...workerBody(site), jobId: (await buildJob({ site })).id },
+  }),
+});
+describeEndpoint({
+  route: "PUT /workers/:id",
+  as: "officer",
+  not: "auditor",
+  event: "change-worker",
+  bad: { body: { leftOn: "2023-01-01" } },
+  badField: "leftOn",
+  call: async (site) => ({
+    method: "put",
+    path: `/workers/${(await buildWorker({ site })).id}`,
+    revision: 1,
+    body: workerBody(site),
+  }),
+});
+describeEndpoint({
+  route: "POST /workers/:id/sign-in-codes",
+  as: "administrator",
+  not: "supervisor",
+  event: "issue-sign-in-code",
+  bad: null,
+  call: async (site) => ({
+    method: "post",
+    path: `/workers/${(await buildWorker({ site })).id}/sign-in-codes`,
+  }),
+});
+describeEndpoint({
+  route: "GET /workers/:id/assignments",
+  as: "auditor",
+  not: "administrator",
+  event: null,
+  bad: null,
+  call: async (site) => {
+    const worker = await buildWorker({ site });
+    await buildAssignment({ worker });
+    return { method: "get", path: `/workers/${worker.id}/assignments` };
+  },
+});
+describeEndpoint({
+  route: "POST /workers/:id/assignments",
+  as: "officer",
+  not: "supervisor",
+  event: "assign-protector",
+  bad: { body: { toDate: "2025-12-31" } },
+  badField: "toDate",
+  call: async (site) => {
+    const [worker, model] = [
+      await buildWorker({ site }),
+      await buildProtector({ organizationId: site.organizationId }),
+    ];
+    return {
+      method: "post",
+      path: `/workers/${worker.id}/assignments`,
+      body: { innerModelId: model.id, fromDate: "2026-01-01" },
+    };
+  },
+});
+describeEndpoint({
+  route: "POST /assignments/many",
+  as: "officer",
+  not: "auditor",
+  event: "assign-protector",
+  bad: { body: { workerIds: [] } },
+  badField: "workerIds",
+  call: async (site) => {
+    const workers = [await buildWorker({ site }), await buildWorker({ site })];
+    const model = await buildProtector({ organizationId: site.organizationId });
+    const assignment = { innerModelId: model.id, fromDate: "2026-01-01" };
+    return {
+      method: "post",
+      path: "/assignments/many",
+      body: { workerIds: workers.map(({ id }) => id), assignment },
+    };
+  },
+});
+describeEndpoint({
+  route: "PATCH /assignments/:id",
+  as: "officer",
+  not: "supervisor",
+  event: "end-assignment",
+  bad: { body: { toDate: "2020-12-31" } },
+  badField: "toDate",
+  call: async (site) => {
+    const assignment = await buildAssignment({ worker: await buildWorker({ site }) });
+    return {
+      method: "patch",
+      path: `/assignments/${assignment.id}`,
+      revision: 1,
+      body: { toDate: "2026-01-31" },
+    };
+  },
+});
+
+const as = async (organizationId: string, ...roles: ("officer" | "auditor" | "administrator")[]) =>
+  signInAs(await buildUser({ organizationId, roles }));
+const names = (answer: { body: { rows: { name: string }[] } }) =>
+  answer.body.rows.map(({ name }) => name);
+
+describe("the list of workers", () => {
+  test("pages through by name without a gap or a double, two of one name included", async () => {
+    const site = await buildSite();
+    for (const name of ["Cem", "Ada", "Ben", "Ben", "Dora"]) await buildWorker({ site, name });
+    const client = await as(site.organizationId, "officer");
+    const seen: string[] = [];
+    let next: string | null = "";
+    while (next !== null) {
+      const answer = await client.get(`/workers?limit=2${next ? `&cursor=${next}` : ""}`);
+      seen.push(
+        ...answer.body.rows.map((row: { id: string; name: string }) => `${row.name} ${row.id}`),
+      );
+      next = answer.body.next;
+    }
+    expect(seen.map((entry) => entry.split(" ")[0])).toEqual(["Ada", "Ben", "Ben", "Cem", "Dora"]);
+    expect(new Set(seen).size).toBe(5);
+  });
+
+  test("carries the last day's figures and the open findings", async () => {
+    const site = await buildSite();
+    const [worker, task] = [
+      await buildWorker({ site, name: "Ada" }),
+      await buildTask({ site, name: "Riveting" }),
+    ];
+    await buildDay(worker, "2026-03-01", { atEarDb: 70 });
+    const resultId = await buildDay(worker, "2026-03-02", {
+      outsideDb: 91.3,
+      atEarDb: 78.25,
+      decidingTaskId: task.id,
+    });
+    const finding = {
+      organizationId: site.organizationId,
+      siteId: site.id,
+      workerId: worker.id,
+      kind: "no-protector",
+      firstDate: "2026-03-02",
+      lastDate: "2026-03-02",
+    };
+    await insert("findings", { ...finding, state: "new" });
+    await insert("findings", {
+      ...finding,
+      state: "closed",
+      closedOn: "2026-03-02",
+      closingReason: "given one",
+    });
+    await buildCrew({ site, name: "Early", members: [worker] });
+    const answer = await (await as(site.organizationId, "officer")).get("/workers");
+    expect(answer.body.rows[0]).toMatchObject({
+      name: "Ada",
+      crewName: "Early",
+      openFindings: 1,
+      lastDay: {
+        resultId,
+        date: "2026-03-02",
+        outsideDb: 91.3,
+        atEarDb: 78.25,
+        decidingTaskName: "Riveting",
+        word: "good",
+      },
+    });
+  });
+
+  test.each([
+    ["ruhl", ["Anneke Ruhl"]],
+    ["RUHL anne", ["Anneke Ruhl"]],
+    ["77_0", ["Odd One"]],
+    ["100%", ["Percent 100%"]],
+    ["_", ["Odd One"]],
+    ["\\", []],
+    ["'; --", []],
+    ["şölen", ["Şölen Öz"]],
+  ])("search for «%s»", async (text, found) => {
+    const site = await buildSite();
+    await buildWorker({ site, name: "Anneke Ruhl", employeeNumber: "5501" });
+    await buildWorker({ site, name: "Odd One", employeeNumber: "77_0" });
+    await buildWorker({ site, name: "Percent 100%", employeeNumber: "1001" });
+    await buildWorker({ site, name: "Şölen Öz", employeeNumber: "1002" });
+    const client = await as(site.organizationId, "officer");
+    expect(names(await client.get(`/workers?search=${encodeURIComponent(text)}`))).toEqual(found);
+  });
+
+  test("leaves out who has left, unless asked, and keeps to a site and a crew", async () => {
+    const site = await buildSite();
+    const other = await buildSite({ organizationId: site.organizationId });
+    const ada = await buildWorker({ site, name: "Ada" });
+    await buildWorker({ site, name: "Ben", leftOn: "2024-01-01" });
+    await buildWorker({ site: other, name: "Cem" });
+    const crew = await buildCrew({ site, members: [ada] });
+    const client = await as(site.organizationId, "auditor");
+    expect(names(await client.get("/workers"))).toEqual(["Ada", "Cem"]);
+    expect(names(await client.get("/workers?includeLeft=true"))).toEqual(["Ada", "Ben", "Cem"]);
+    expect(names(await client.get(`/workers?siteId=${other.id}`))).toEqual(["Cem"]);
+    expect(names(await client.get(`/workers?crewId=${crew.id}`))).toEqual(["Ada"]);
+  });
+
+  test("shows a supervisor the own crew only, and of a day only what was by that day's membership", async () => {
+    const site = await buildSite();
+    const [mine, other] = [
+      await buildWorker({ site, name: "Mine" }),
+      await buildWorker({ site, name: "Other" }),
+    ];
+    const user = await buildUser({ organizationId: site.organizationId, roles: ["supervisor"] });
+    await buildCrew({ site, members: [mine], supervisors: [user], fromDate: "2026-02-01" });
+    await buildDay(mine, "2026-01-31");
+    const client = await signInAs(user);
+    const answer = await client.get("/workers");
+    expect(names(answer)).toEqual(["Mine"]);
+    expect(answer.body.rows[0].lastDay).toBeNull();
+    expect((await client.get(`/workers/${other.id}`)).status).toBe(404);
+  });
+
+  test("a worker sees self and nobody else", async () => {
+    const site = await buildSite();
+    const [self, other] = [await buildWorker({ site }), await buildWorker({ site })];
+    const client = await signInAs(
+      await buildUser({
+        organizationId: site.organizationId,
+        roles: ["worker"],
+        workerId: self.id,
+      }),
+    );
+    expect((await client.get(`/workers/${self.id}`)).body).toMatchObject({
+      id: self.id,
+      can: { change: false, report: true },
+    });
+    expect((await client.get(`/workers/${other.id}`)).status).toBe(404);
+    expect((await client.get(`/workers/${other.id}/assignments`)).status).toBe(404);
+  });
+});
+
+describe("a worker", () => {
+  test("an employee number that is taken is refused by its field; another organization may use it too", async () => {
+    const site = await buildSite();
+    await buildWorker({ site, employeeNumber: "5501" });
+    await buildWorker({ employeeNumber: "5502" });
+    const client = await as(site.organizationId, "officer");
+    const taken = await client.post("/workers", workerBody(site));
+    expect(taken.status).toBe(422);
+    expect(taken.body.issues[0]).toMatchObject({
+      path: ["employeeNumber"],
+      code: "employee-number-taken",
+    });
+    expect(
+      (await client.post("/workers", { ...workerBody(site), employeeNumber: "5502" })).status,
+    ).toBe(201);
+  });
+
+  test("a double click adds one", async () => {
+    const site = await buildSite();
+    const client = await as(site.organizationId, "officer");
+    const key = crypto.randomUUID();
+    const answers = await Promise.all([
+      client.post("/workers", workerBody(site), key),
+      client.post("/workers", workerBody(site), key),
+    ]);
+    expect(answers.map(({ status }) => status)).toEqual([201, 201]);
+    expect(answers[0]?.body.id).toBe(answers[1]?.body.id);
+    const otherBody = await client.post(
+      "/workers",
+      { ...workerBody(site), name: "Somebody else" },
+      key,
+    );
+    expect(otherBody.body.code).toBe("key-reused");
+  });
+
+  test("the reason of a personal requirement is the officer's alone, and stands in no event and no kept answer", async () => {
+    const site = await buildSite();
+    const secret = "tinnitus since a blast";
+    const client = await as(site.organizationId, "officer");
+    const body = { ...workerBody(site), personalTargetDb: 75, requirementReason: secret };
+    const { id } = (await client.post("/workers", body)).body;
+    expect((await client.get(`/workers/${id}`)).body.requirementReason).toBe(secret);
+    const changed = await client.put(
+      `/workers/${id}`,
+      { ...body, requirementReason: `${secret}, left` },
+      1,
+    );
+    expect(changed.body).toMatchObject({ requirementReason: `${secret}, left`, revision: 2 });
+
+    const supervisor = await signInAs(
+      await buildSupervisorOf(site, { ...site, id, siteId: site.id, employeeNumber: "5501" }),
+    );
+    const worker = await signInAs(
+      await buildUser({ organizationId: site.organizationId, roles: ["worker"], workerId: id }),
+    );
+    for (const reader of [await as(site.organizationId, "auditor"), supervisor, worker]) {
+      expect((await reader.get(`/workers/${id}`)).body).toMatchObject({
+        id,
+        personalTargetDb: 75,
+        requirementReason: null,
+      });
+    }
+    const kept = await select(
+      `SELECT recorded::text AS text FROM audit_values WHERE organization_id = $1
+       UNION ALL SELECT coalesce(reply::text, '') FROM idempotency_keys WHERE organization_id = $1`,
+      [site.organizationId],
+    );
+    expect(kept).toHaveLength(3);
+    expect(JSON.stringify(kept)).not.toContain("tinnitus");
+    expect(JSON.stringify(kept)).toContain("isRequirementReasonChanged");
+  });
+
+  test("a reason without a requirement is refused; without a reason the row is gone", async () => {
+    const site = await buildSite();
+    const client = await as(site.organizationId, "officer");
+    const refused = await client.post("/workers", {
+      ...workerBody(site),
+      requirementReason: "medical",
+    });
+    expect(refused.body.issues[0]).toMatchObject({
+      path: ["requirementReason"],
+      code: "reason-without-requirement",
+    });
+    const { id } = (
+      await client.post("/workers", {
+        ...workerBody(site),
+        mustWear: true,
+        requirementReason: "medical",
+      })
+    ).body;
+    await client.put(`/workers/${id}`, workerBody(site), 1);
+    expect(
+      await select("SELECT 1 FROM worker_requirement_reasons WHERE worker_id = $1", [id]),
+    ).toHaveLength(0);
+  });
+
+  test("a stricter target moves the days from today on", async () => {
+    const site = await buildSite();
+    const worker = await buildWorker({ site });
+    await buildDay(worker, daysFromToday(-5));
+    await buildDay(worker, daysFromToday(1));
+    const client = await as(site.organizationId, "officer");
+    await client.put(`/workers/${worker.id}`, { ...workerBody(site), personalTargetDb: 75 }, 1);
+    const days = await select<{ is_stale: boolean }>(
+      "SELECT is_stale FROM days WHERE worker_id = $1 ORDER BY date",
+      [worker.id],
+    );
+    expect(days.map(({ is_stale }) => is_stale)).toEqual([false, true]);
+  });
+});
+
+describe("a sign-in code", () => {
+  test("is shown once, kept as a hash, and ends the one before it", async () => {
+    const site = await buildSite();
+    const worker = await buildWorker({ site });
+    const client = await as(site.organizationId, "officer");
+    const path = `/workers/${worker.id}/sign-in-codes`;
+    const [first, second] = [
+      (await client.post(path, {})).body,
+      (await client.post(path, {})).body,
+    ];
+    expect(first.code).toMatch(/^[A-HJ-NP-Z2-9]{4}-[A-HJ-NP-Z2-9]{4}-[A-HJ-NP-Z2-9]{4}$/);
+    expect(Date.parse(first.expiresAt)).toBeGreaterThan(Date.now() + 29 * 86_400_000);
+    const codes = await select<{ code_hash: string; is_over: boolean }>(
+      "SELECT code_hash, expires_at <= now() AS is_over FROM sign_in_codes WHERE worker_id = $1 ORDER BY created_at",
+      [worker.id],
+    );
+    expect(codes).toEqual([
+      { code_hash: hashCode(first.code), is_over: true },
+      { code_hash: hashCode(second.code), is_over: false },
+    ]);
+  });
+
+  test("a repeated key is refused, and the code stands nowhere", async () => {
+    const site = await buildSite();
+    const worker = await buildWorker({ site });
+    const client = await as(site.organizationId, "administrator");
+    const [path, key] = [`/workers/${worker.id}/sign-in-codes`, crypto.randomUUID()];
+    const { code } = (await client.post(path, {}, key)).body;
+    expect((await client.post(path, {}, key)).body.code).toBe("exists-already");
+    const kept = await select(
+      "SELECT reply::text AS text FROM idempotency_keys WHERE key = $1 UNION ALL SELECT recorded::text FROM audit_values WHERE organization_id = $2",
+      [key, site.organizationId],
+    );
+    expect(JSON.stringify(kept)).not.toContain(code);
+  });
+});
+
+describe("assignments", () => {
+  test("a new one ends the open one of its use the day before, and moves the days since", async () => {
+    const site = await buildSite();
+    const { organizationId } = site;
+    const worker = await buildWorker({ site });
+    const task = await buildTask({ site });
+    const [old, model] = [
+      await buildAssignment({ worker, fromDate: "2026-01-01" }),
+      await buildProtector({ organizationId, name: "Blue muff" }),
+    ];
+    const ofTask = await buildAssignment({ worker, taskId: task.id, fromDate: "2026-01-01" });
+    await buildDay(worker, "2026-02-28");
+    await buildDay(worker, "2026-03-01");
+    const client = await as(organizationId, "officer");
+    const answer = await client.post(`/workers/${worker.id}/assignments`, {
+      innerModelId: model.id,
+      fromDate: "2026-03-01",
+    });
+    expect(answer.body).toMatchObject({
+      use: "everywhere",
+      innerName: "Blue muff",
+      fromDate: "2026-03-01",
+      toDate: null,
+      revision: 1,
+    });
+    const { rows } = (await client.get(`/workers/${worker.id}/assignments`)).body;
+    const found = (id: string) => rows.find((row: { id: string }) => row.id === id);
+    expect(found(old.id)).toMatchObject({
+      fromDate: "2026-01-01",
+      toDate: "2026-02-28",
+      revision: 2,
+    });
+    expect(found(ofTask.id)).toMatchObject({
+      toDate: null,
+      revision: 1,
+      use: "task",
+      useName: task.name,
+    });
+    const events = await select<{ action: string }>(
+      "SELECT action FROM audit_events WHERE subject_id = $1 ORDER BY id",
+      [worker.id],
+    );
+    expect(events.map(({ action }) => action)).toEqual(["end-assignment", "assign-protector"]);
+    const days = await select<{ is_stale: boolean }>(
+      "SELECT is_stale FROM days WHERE worker_id = $1 ORDER BY date",
+      [worker.id],
+    );
+    expect(days.map(({ is_stale }) => is_stale)).toEqual([false, true]);
+  });
+
+  test("one that would overlap a later or a closed one is refused with its dates", async () => {
+    const site = await buildSite();
+    const worker = await buildWorker({ site });
+    await buildAssignment({ worker, fromDate: "2026-04-01" });
+    const model = await buildProtector({ organizationId: site.organizationId });
+    const client = await as(site.organizationId, "officer");
+    const answer = await client.post(`/workers/${worker.id}/assignments`, {
+      innerModelId: model.id,
+      fromDate: "2026-03-01",
+    });
+    expect(answer.status).toBe(422);
+    expect(answer.body.issues[0]).toMatchObject({
+      path: ["fromDate"],
+      code: "assignments-overlap",
+      params: { fromDate: "2026-04-01" },
+    });
+  });
+
+  test("an archived protector, one without data yet, one use, two different ones, and nobody before being hired", async () => {
+    const site = await buildSite();
+    const { organizationId } = site;
+    const worker = await buildWorker({ site, hiredOn: "2026-01-15" });
+    const [good, archived, later] = [
+      await buildProtector({ organizationId }),
+      await buildProtector({ organizationId, isArchived: true }),
+      await buildProtector({ organizationId, effectiveFrom: "2026-06-01" }),
+    ];
+    const [task, area] = [await buildTask({ site }), await buildArea({ site })];
+    const client = await as(organizationId, "officer");
+    const codes = [];
+    for (const body of [
+      { innerModelId: archived.id },
+      { innerModelId: good.id, outerModelId: later.id },
+      { innerModelId: good.id, taskId: task.id, areaId: area.id },
+      { innerModelId: good.id, outerModelId: good.id },
+      { innerModelId: good.id, fromDate: "2026-01-14" },
+    ]) {
+      const answer = await client.post(`/workers/${worker.id}/assignments`, {
+        fromDate: "2026-02-01",
+        ...body,
+      });
+      codes.push(`${answer.status} ${answer.body.issues[0].path} ${answer.body.issues[0].code}`);
+    }
+    expect(codes).toEqual([
+      "422 innerModelId protector-archived",
+      "422 outerModelId protector-data-later",
+      "422 areaId one-use-only",
+      "422 outerModelId same-protector-twice",
+      "422 fromDate before-hire",
+    ]);
+  });
+
+  test("many at once are all or nothing, and say whom it concerns", async () => {
+    const site = await buildSite();
+    const [one, two, three] = [
+      await buildWorker({ site }),
+      await buildWorker({ site, hiredOn: "2026-05-01" }),
+      await buildWorker({ site }),
+    ];
+    await buildAssignment({ worker: three, fromDate: "2026-02-01", toDate: "2026-12-31" });
+    const model = await buildProtector({ organizationId: site.organizationId });
+    const client = await as(site.organizationId, "officer");
+    const assignment = { innerModelId: model.id, fromDate: "2026-03-01" };
+    const refused = await client.post("/assignments/many", {
+      workerIds: [one.id, two.id, three.id],
+      assignment,
+    });
+    expect(refused.status).toBe(422);
+    expect(
+      refused.body.issues.map((found: { path: unknown[]; code: string }) => [
+        found.path,
+        found.code,
+      ]),
+    ).toEqual([
+      [["workerIds", 1], "before-hire"],
+      [["workerIds", 2], "assignments-overlap"],
+    ]);
+    expect(
+      await select("SELECT 1 FROM assignments WHERE inner_model_id = $1", [model.id]),
+    ).toHaveLength(0);
+    const twice = await client.post("/assignments/many", {
+      workerIds: [one.id, one.id],
+      assignment,
+    });
+    expect(twice.body.issues[0]).toMatchObject({ path: ["workerIds", 1], code: "worker-twice" });
+    const foreign = await client.post("/assignments/many", {
+      workerIds: [one.id, (await buildWorker()).id],
+      assignment,
+    });
+    expect(foreign.status).toBe(404);
+    const done = await client.post("/assignments/many", { workerIds: [one.id], assignment });
+    expect(done.body.rows).toHaveLength(1);
+  });
+
+  test("an end moved back or forth moves the days between", async () => {
+    const site = await buildSite();
+    const worker = await buildWorker({ site });
+    const { id } = await buildAssignment({ worker, fromDate: "2026-01-01", toDate: "2026-03-31" });
+    for (const date of ["2026-02-10", "2026-02-11", "2026-04-02"]) await buildDay(worker, date);
+    const client = await as(site.organizationId, "officer");
+    const answer = await client.patch(`/assignments/${id}`, { toDate: "2026-02-10" }, 1);
+    expect(answer.body).toMatchObject({ toDate: "2026-02-10", revision: 2 });
+    const days = await select<{ is_stale: boolean }>(
+      "SELECT is_stale FROM days WHERE worker_id = $1 ORDER BY date",
+      [worker.id],
+    );
+    expect(days.map(({ is_stale }) => is_stale)).toEqual([false, true, true]);
+    expect((await client.patch(`/assignments/${id}`, { toDate: "2026-02-12" }, 1)).status).toBe(
+      412,
+    );
+  });
+
+  test("six at once for one worker leave one open one", async () => {
+    const site = await buildSite();
+    const worker = await buildWorker({ site });
+    const model = await buildProtector({ organizationId: site.organizationId });
+    const client = await as(site.organizationId, "officer");
+    const send = () =>
+      client.post(`/workers/${worker.id}/assignments`, {
+        innerModelId: model.id,
+        fromDate: "2026-03-01",
+      });
+    const answers = await Promise.all(Array.from({ length: 6 }, send));
+    expect(answers.map(({ status }) => status).toSorted()).toEqual([201, 422, 422, 422, 422, 422]);
+  });
+});
