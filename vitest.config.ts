@@ -11,7 +11,7 @@ export default defineConfig({
       {
         test: {
           name: "unit",
-          include: ["{shared,server,scripts,migrations,seeders,bench}/**/*.test.ts"],
+          include: ["{shared,server,scripts,migrations,seeders,bench}/**/*.test.ts", "tests/*.test.ts"],
           setupFiles: published,
         },
       },

@@ -144,6 +144,11 @@ CALL protect_tenant('role_grants');
 -- The organization can't lose its last administrator, whoever asks and however many ask at once.
 CREATE FUNCTION keep_an_administrator() RETURNS trigger LANGUAGE plpgsql AS $$
 BEGIN
+  IF TG_TABLE_NAME = 'users' AND NOT EXISTS (
+    SELECT 1 FROM role_grants g WHERE g.user_id = NEW.id AND g.role = 'administrator' AND g.revoked_at IS NULL
+  ) THEN
+    RETURN NULL;
+  END IF;
   PERFORM 1 FROM organizations WHERE id = OLD.organization_id FOR UPDATE;
   IF NOT EXISTS (
     SELECT 1 FROM role_grants g JOIN users u ON u.id = g.user_id

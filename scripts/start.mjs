@@ -150,19 +150,13 @@ async function runStep(what, args, env) {
   const logFile = join(files.logs, "start.log");
   writeFileSync(logFile, report);
   if (/ENOSPC|no space left on device/i.test(report)) throw diskFull(dataFolder);
-  if (!cluster.isAlive()) throw databaseIsDead();
+  if (!cluster.isAlive()) throw cluster.explainDeath();
   const words = report
     .split("\n")
     .map((line) => line.trim())
     .filter((line) => line && !/^at |^Node\.js v|build failed/i.test(line));
   const reason = words.find((line) => /error|could not|cannot|failed/i.test(line)) ?? words.at(-1);
   throw new Failure(`${what} failed: ${reason ?? "no reason given"} (log: ${logFile})`);
-}
-
-function databaseIsDead() {
-  return new Failure(
-    `The database ended unexpectedly (log: ${join(cluster.home, "postgres.log")})`,
-  );
 }
 
 /** How Node.js runs one of the server's entry points. */
@@ -272,7 +266,7 @@ Stop with Ctrl-C.`);
 async function watchDatabase() {
   while (!stopping) {
     await sleep(1000);
-    if (!stopping && !cluster.isAlive()) await endWith(databaseIsDead().message);
+    if (!stopping && !cluster.isAlive()) await endWith(cluster.explainDeath().message);
   }
 }
 

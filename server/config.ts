@@ -98,3 +98,6 @@ export function configOrExit<P extends ProcessName>(process_: P): Config<P> {
     process.exit(1);
   }
 }
+
+/** What a program that this one starts may see: the same environment and something more. */
+export const childEnvironment = (more: Record<string, string>): NodeJS.ProcessEnv => ({ ...process.env, ...more });

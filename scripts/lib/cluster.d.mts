@@ -13,6 +13,8 @@ export interface Cluster {
   ): Promise<string[]>;
   url(role: "app" | "owner" | "super", database: string): string;
   isAlive(): boolean;
+  /** The one line for a server that is found dead. */
+  explainDeath(): Error;
   hasDatabase(name: string): Promise<boolean>;
   createDatabase(name: string, options?: { template?: string }): Promise<void>;
   dropDatabase(name: string): Promise<void>;

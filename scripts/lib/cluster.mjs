@@ -375,6 +375,13 @@ function describe(context) {
 
     isAlive: () => postmasterPid(home) !== null,
 
+    /** The one line for a server that is found dead. */
+    explainDeath() {
+      const logFile = join(home, "postgres.log");
+      if (/no space left on device/i.test(lastLines(logFile))) return diskFull(home);
+      return new Failure(`The database ended unexpectedly (log: ${logFile})`);
+    },
+
     async hasDatabase(name) {
       return (await sql(`SELECT 1 FROM pg_database WHERE datname = '${name}'`)).length > 0;
     },

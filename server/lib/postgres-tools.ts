@@ -1,4 +1,5 @@
 import { spawn } from "node:child_process";
+import { childEnvironment } from "../config";
 
 /** Runs pg_dump or pg_restore. The password goes by the environment: arguments show in the process list. */
 export function runPostgresTool(
@@ -10,7 +11,7 @@ export function runPostgresTool(
   const password = decodeURIComponent(url.password);
   url.password = "";
   const child = spawn(tool, [...args, `--dbname=${url.href}`], {
-    env: { ...process.env, PGPASSWORD: password },
+    env: childEnvironment({ PGPASSWORD: password }),
     stdio: ["ignore", "pipe", "pipe"],
   });
   return finish(tool, child);

@@ -676,7 +676,7 @@ class Builder {
           ? text(/*i18n*/ "Verdict at the ear")
           : text(/*i18n*/ "Verdict without protection"),
       tables: [this.verdictTable(results)],
-      notes: this.governing.notStated.map((what) =>
+      notes: (judged === "at-the-ear" ? [] : this.governing.notStated).map((what) =>
         text(/*i18n*/ "Not stated by the rule: {what}.", {
           what: { kind: "text", text: text(what) },
         }),

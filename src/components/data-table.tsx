@@ -226,7 +226,7 @@ export function DataTable<Row extends RowData>({
               LOADING_ROWS.map((key) => (
                 <tr key={key}>
                   {columns.map((column) => (
-                    <td key={column.id} className={cellClass(column)}>
+                    <td key={column.id} data-column={column.id} className={cellClass(column)}>
                       {column.kind === "strip" ? column.filler : <span className="loading-line" />}
                     </td>
                   ))}
@@ -246,11 +246,20 @@ export function DataTable<Row extends RowData>({
                         const column = byId.get(cell.column.id);
                         if (!column) return null;
                         return column.isRowHead ? (
-                          <th key={cell.id} scope="row" className={cellClass(column)}>
+                          <th
+                            key={cell.id}
+                            scope="row"
+                            data-column={column.id}
+                            className={cellClass(column)}
+                          >
                             <table.FlexRender cell={cell} />
                           </th>
                         ) : (
-                          <td key={cell.id} className={cellClass(column)}>
+                          <td
+                            key={cell.id}
+                            data-column={column.id}
+                            className={cellClass(column)}
+                          >
                             <table.FlexRender cell={cell} />
                           </td>
                         );

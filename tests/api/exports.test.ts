@@ -13,13 +13,13 @@ import {
   buildTask,
   buildUser,
   buildWorker,
-  insert,
+  insert, owner,
   type Site,
   select,
   signInAs,
   testApp,
 } from "../factories";
-import { owner } from "../factories/insert";
+
 import { describeEndpoint } from "./five-cases";
 
 describeEndpoint({

@@ -1,6 +1,6 @@
 export { buildDay } from "./day";
 export { daysFromToday } from "./days";
-export { insert, select } from "./insert";
+export { insert, owner, select } from "./insert";
 export { buildInstrument } from "./instrument";
 export { buildOrganization } from "./organization";
 export { buildAssignment, buildProtector } from "./protector";

@@ -1,0 +1,25 @@
+import { queryOptions, useMutation, useQueryClient } from "@tanstack/react-query";
+import type { EntryNotices, NoticeText } from "../../../shared/schemas/notice";
+import type { z } from "zod";
+import { api } from "../../lib/api";
+import { ownReply } from "../../lib/own-reply";
+
+const entryReply = ownReply<EntryNotices>("entryId", "state", "people", "notices");
+const textReply = ownReply<z.infer<typeof NoticeText>>("subject", "text", "isSent");
+
+/** How a notice reads: as it was sent, or as it would read now. */
+export const noticeTextQuery = (id: string) =>
+  queryOptions({
+    queryKey: ["notices", "text", id],
+    queryFn: ({ signal }) => api.get(`/notices/${id}`, { schema: textReply, signal }),
+  });
+
+/** Holds back, or lets go at once, what an entry will tell. */
+export function useHandleNotices(entryId: string) {
+  const client = useQueryClient();
+  return useMutation({
+    mutationFn: (action: "hold" | "send-now") => api.post(`/entries/${entryId}/notices/actions`, { body: { action }, schema: entryReply }),
+    onSettled: () =>
+      Promise.all([client.invalidateQueries({ queryKey: ["waiting"] }), client.invalidateQueries({ queryKey: ["notices"] })]),
+  });
+}
