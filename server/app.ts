@@ -3,18 +3,18 @@ import { existsSync } from "node:fs";
 import path from "node:path";
 import express, { type ErrorRequestHandler, type Express } from "express";
 import helmet from "helmet";
-import { defineAuthRoutes } from "./auth/routes";
 import { Provider } from "./auth/provider";
 import { limitTries } from "./auth/rate-limit";
+import { defineAuthRoutes } from "./auth/routes";
 import { refuseForgery, sessions } from "./auth/session";
 import type { Config } from "./config";
 import { sequelize } from "./lib/db";
 import { mountRoutes, routes } from "./lib/endpoint";
 import { AppError, fromDatabase, isDatabaseDown } from "./lib/errors";
 import { describeError, type Log } from "./lib/log";
-import { withRequestId } from "./lib/request-context";
-import { buildOpenApi } from "./lib/open-api";
 import { pendingMigrations } from "./lib/migrator";
+import { buildOpenApi } from "./lib/open-api";
+import { withRequestId } from "./lib/request-context";
 import { defineRoutes } from "./routes";
 
 export interface AppState {
@@ -22,20 +22,35 @@ export interface AppState {
   isDraining: boolean;
 }
 
-export function createApp(config: Config<"web">, log: Log, state: AppState = { isDraining: false }): Express {
+export function createApp(
+  config: Config<"web">,
+  log: Log,
+  state: AppState = { isDraining: false },
+): Express {
   const app = express();
   const provider = new Provider(config);
   app.disable("x-powered-by");
   app.set("trust proxy", config.TRUST_PROXY);
 
   app.use((request, response, next) => {
-    const requestId = /^[\w-]{8,64}$/.test(request.get("x-request-id") ?? "") ? (request.get("x-request-id") as string) : randomUUID();
+    const requestId = /^[\w-]{8,64}$/.test(request.get("x-request-id") ?? "")
+      ? (request.get("x-request-id") as string)
+      : randomUUID();
     response.setHeader("x-request-id", requestId);
     response.locals.requestId = requestId;
     const began = process.hrtime.bigint();
     response.on("finish", () => {
       const durationMs = Number(process.hrtime.bigint() - began) / 1e6;
-      log.info({ requestId, method: request.method, route: response.locals.route, status: response.statusCode, durationMs }, "request");
+      log.info(
+        {
+          requestId,
+          method: request.method,
+          route: response.locals.route,
+          status: response.statusCode,
+          durationMs,
+        },
+        "request",
+      );
     });
     withRequestId(requestId, next);
   });
@@ -46,7 +61,9 @@ export function createApp(config: Config<"web">, log: Log, state: AppState = { i
       if (state.isDraining) throw new AppError("draining", 503);
       await sequelize().query("SELECT 1", { transaction: null });
       const pending = await pendingMigrations(sequelize());
-      response.status(pending.length === 0 ? 200 : 503).json({ status: pending.length === 0 ? "ready" : "not-migrated" });
+      response
+        .status(pending.length === 0 ? 200 : 503)
+        .json({ status: pending.length === 0 ? "ready" : "not-migrated" });
     } catch {
       response.status(503).json({ status: state.isDraining ? "draining" : "database-down" });
     }
@@ -74,7 +91,9 @@ export function createApp(config: Config<"web">, log: Log, state: AppState = { i
         },
       },
       crossOriginEmbedderPolicy: false,
-      strictTransportSecurity: config.PUBLIC_URL.startsWith("https:") ? { maxAge: 31_536_000 } : false,
+      strictTransportSecurity: config.PUBLIC_URL.startsWith("https:")
+        ? { maxAge: 31_536_000 }
+        : false,
       referrerPolicy: { policy: "same-origin" },
     }),
   );
@@ -106,23 +125,41 @@ export function createApp(config: Config<"web">, log: Log, state: AppState = { i
 }
 
 function serveClient(app: Express): void {
-  const client = path.resolve(import.meta.dirname, import.meta.dirname.endsWith("server") && existsSync(path.resolve(import.meta.dirname, "../client")) ? "../client" : "../dist/client");
-  app.use("/assets", express.static(path.join(client, "assets"), { immutable: true, maxAge: "365d", index: false }));
+  const client = path.resolve(
+    import.meta.dirname,
+    import.meta.dirname.endsWith("server") &&
+      existsSync(path.resolve(import.meta.dirname, "../client"))
+      ? "../client"
+      : "../dist/client",
+  );
+  app.use(
+    "/assets",
+    express.static(path.join(client, "assets"), { immutable: true, maxAge: "365d", index: false }),
+  );
   app.use(express.static(client, { index: false, maxAge: 0 }));
   app.get("/{*rest}", (_request, response, next) => {
     response.setHeader("cache-control", "no-cache");
-    response.sendFile(path.join(client, "index.html"), (error) => error && next(new AppError("not-found", 404)));
+    response.sendFile(
+      path.join(client, "index.html"),
+      (error) => error && next(new AppError("not-found", 404)),
+    );
   });
 }
 
 /** Every failure leaves as problem+json; what the client can't mend is logged without its message. */
-const problems = (log: Log): ErrorRequestHandler => (thrown, _request, response, next) => {
-  const requestId = response.locals.requestId as string;
-  if (response.headersSent) return next(thrown);
-  const error = toAppError(fromDatabase(thrown));
-  if (error.status >= 500) log.error({ requestId, route: response.locals.route, code: error.code, ...describeError(thrown) }, "request failed");
-  response.status(error.status).type("application/problem+json").json(error.toProblem(requestId));
-};
+const problems =
+  (log: Log): ErrorRequestHandler =>
+  (thrown, _request, response, next) => {
+    const requestId = response.locals.requestId as string;
+    if (response.headersSent) return next(thrown);
+    const error = toAppError(fromDatabase(thrown));
+    if (error.status >= 500)
+      log.error(
+        { requestId, route: response.locals.route, code: error.code, ...describeError(thrown) },
+        "request failed",
+      );
+    response.status(error.status).type("application/problem+json").json(error.toProblem(requestId));
+  };
 
 function toAppError(error: unknown): AppError {
   if (error instanceof AppError) return error;

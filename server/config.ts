@@ -2,9 +2,15 @@ import { z } from "zod";
 
 const secretList = z
   .string()
-  .transform((value) => value.split(",").map((secret) => secret.trim()).filter(Boolean))
+  .transform((value) =>
+    value
+      .split(",")
+      .map((secret) => secret.trim())
+      .filter(Boolean),
+  )
   .refine((list) => list.length > 0 && list.every((secret) => secret.length >= 32), {
-    message: "needs one or more secrets of at least 32 characters, separated by commas; the first signs, all verify",
+    message:
+      "needs one or more secrets of at least 32 characters, separated by commas; the first signs, all verify",
   });
 
 const trustProxy = z
@@ -14,22 +20,33 @@ const trustProxy = z
     if (value === "false" || value === "true") return value === "true";
     if (/^\d+$/.test(value)) return Number(value);
     if (/^[\d.,:/a-f\s]+$|^(loopback|linklocal|uniquelocal)/i.test(value)) return value;
-    context.addIssue({ code: "custom", message: "is false, a number of proxies, or their addresses" });
+    context.addIssue({
+      code: "custom",
+      message: "is false, a number of proxies, or their addresses",
+    });
     return z.NEVER;
   });
 
-const flag = z.enum(["true", "false"]).default("false").transform((value) => value === "true");
+const flag = z
+  .enum(["true", "false"])
+  .default("false")
+  .transform((value) => value === "true");
 
 const database = {
   NODE_ENV: z.enum(["production", "development", "test"]).default("development"),
-  DATABASE_URL: z.url({ protocol: /^postgres(ql)?$/, error: "is a postgres:// address of the application's role" }),
+  DATABASE_URL: z.url({
+    protocol: /^postgres(ql)?$/,
+    error: "is a postgres:// address of the application's role",
+  }),
   LOG_LEVEL: z.enum(["debug", "info", "warn", "error", "silent"]).default("info"),
   DATA_DIR: z.string({ error: "is the folder in which uploaded files are kept" }).min(1),
 };
 
 const mail = {
   SMTP_URL: z.url({ protocol: /^smtps?$/, error: "is an smtp:// or smtps:// address" }),
-  MAIL_FROM: z.string({ error: "is the sender of notices, such as Dinward <noise@example.org>" }).min(3),
+  MAIL_FROM: z
+    .string({ error: "is the sender of notices, such as Dinward <noise@example.org>" })
+    .min(3),
   PUBLIC_URL: z.url({ protocol: /^https?$/, error: "is the address that people open" }),
 };
 
@@ -53,7 +70,9 @@ const processes = {
   work: z.object({ ...database, ...mail }),
   owner: z.object({
     ...database,
-    OWNER_DATABASE_URL: z.url({ error: "is a postgres:// address of the role that owns the tables" }),
+    OWNER_DATABASE_URL: z.url({
+      error: "is a postgres:// address of the role that owns the tables",
+    }),
   }),
 };
 
@@ -67,7 +86,10 @@ export class ConfigError extends Error {}
  *
  * @throws ConfigError that names every missing or bad variable.
  */
-export function readConfig<P extends ProcessName>(process_: P, env: NodeJS.ProcessEnv = process.env): Config<P> {
+export function readConfig<P extends ProcessName>(
+  process_: P,
+  env: NodeJS.ProcessEnv = process.env,
+): Config<P> {
   const present = Object.fromEntries(Object.entries(env).filter(([, value]) => value !== ""));
   const parsed = processes[process_].safeParse(present);
   const wrong = parsed.success
@@ -77,14 +99,22 @@ export function readConfig<P extends ProcessName>(process_: P, env: NodeJS.Proce
         return `  ${name} ${present[name] === undefined ? "is missing: it " : ""}${issue.message}`;
       });
   const values = parsed.success ? (parsed.data as Record<string, unknown>) : {};
-  if (values.OIDC_ALLOW_INSECURE && !/^http:\/\/(127\.0\.0\.1|localhost|\[::1\])[:/]/.test(`${values.OIDC_ISSUER}/`)) {
+  if (
+    values.OIDC_ALLOW_INSECURE &&
+    !/^http:\/\/(127\.0\.0\.1|localhost|\[::1\])[:/]/.test(`${values.OIDC_ISSUER}/`)
+  ) {
     wrong.push("  OIDC_ALLOW_INSECURE is only for a provider on this machine");
   }
-  if (values.NODE_ENV === "production" && typeof values.PUBLIC_URL === "string" && values.PUBLIC_URL.startsWith("http:")
-    && !/^http:\/\/(127\.0\.0\.1|localhost)([:/]|$)/.test(values.PUBLIC_URL)) {
+  if (
+    values.NODE_ENV === "production" &&
+    typeof values.PUBLIC_URL === "string" &&
+    values.PUBLIC_URL.startsWith("http:") &&
+    !/^http:\/\/(127\.0\.0\.1|localhost)([:/]|$)/.test(values.PUBLIC_URL)
+  ) {
     wrong.push("  PUBLIC_URL has to be https in production");
   }
-  if (wrong.length > 0) throw new ConfigError(`The environment is not complete:\n${wrong.join("\n")}`);
+  if (wrong.length > 0)
+    throw new ConfigError(`The environment is not complete:\n${wrong.join("\n")}`);
   return Object.freeze(parsed.data) as Config<P>;
 }
 
@@ -100,4 +130,7 @@ export function configOrExit<P extends ProcessName>(process_: P): Config<P> {
 }
 
 /** What a program that this one starts may see: the same environment and something more. */
-export const childEnvironment = (more: Record<string, string>): NodeJS.ProcessEnv => ({ ...process.env, ...more });
+export const childEnvironment = (more: Record<string, string>): NodeJS.ProcessEnv => ({
+  ...process.env,
+  ...more,
+});

@@ -14,12 +14,19 @@ const server = createServer(createApp(config, log, state));
 server.keepAliveTimeout = 65_000;
 
 server.on("error", (error: NodeJS.ErrnoException) => {
-  console.error(error.code === "EADDRINUSE" ? `Port ${config.PORT} on ${config.HOST} is in use: set PORT to a free one.` : `The web process can't listen: ${error.code ?? error.name}.`);
+  console.error(
+    error.code === "EADDRINUSE"
+      ? `Port ${config.PORT} on ${config.HOST} is in use: set PORT to a free one.`
+      : `The web process can't listen: ${error.code ?? error.name}.`,
+  );
   process.exit(1);
 });
 server.listen(config.PORT, config.HOST, () => {
   const address = server.address();
-  log.info({ process: "web", port: typeof address === "object" && address ? address.port : config.PORT }, "listening");
+  log.info(
+    { process: "web", port: typeof address === "object" && address ? address.port : config.PORT },
+    "listening",
+  );
 });
 
 let isEnding = false;

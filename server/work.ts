@@ -20,21 +20,25 @@ const mailer = new Mailer(config.SMTP_URL, config.MAIL_FROM);
 let isStopping = false;
 
 /** A job runs under an id of its own, which its events and log lines carry. */
-const job = <N extends keyof JobPayloads>(name: N, work: (payload: JobPayloads[N]) => Promise<unknown>) => async (payload: unknown) => {
-  const requestId = randomUUID();
-  await withRequestId(requestId, async () => {
-    try {
-      await work(payload as JobPayloads[N]);
-      log.info({ job: name, requestId }, "job done");
-    } catch (error) {
-      log.warn({ job: name, requestId, ...describeError(error) }, "job failed");
-      throw error;
-    }
-  });
-};
+const job =
+  <N extends keyof JobPayloads>(name: N, work: (payload: JobPayloads[N]) => Promise<unknown>) =>
+  async (payload: unknown) => {
+    const requestId = randomUUID();
+    await withRequestId(requestId, async () => {
+      try {
+        await work(payload as JobPayloads[N]);
+        log.info({ job: name, requestId }, "job done");
+      } catch (error) {
+        log.warn({ job: name, requestId, ...describeError(error) }, "job failed");
+        throw error;
+      }
+    });
+  };
 
 const taskList: TaskList = {
-  "recompute-days": job("recompute-days", ({ organizationId }) => recomputeStaleDays(organizationId, () => isStopping)),
+  "recompute-days": job("recompute-days", ({ organizationId }) =>
+    recomputeStaleDays(organizationId, () => isStopping),
+  ),
   "send-notice": job("send-notice", (payload) => sendNotice(payload, mailer, config.PUBLIC_URL)),
   "look-after": job("look-after", () => lookAfter()),
 };
@@ -45,9 +49,20 @@ const runner = await run({
   pollInterval: 1000,
   noHandleSignals: true,
   taskList,
-  parsedCronItems: parseCronItems([{ task: "look-after", match: "* * * * *", identifier: "look-after", options: { jobKey: "look-after" } }]),
+  parsedCronItems: parseCronItems([
+    {
+      task: "look-after",
+      match: "* * * * *",
+      identifier: "look-after",
+      options: { jobKey: "look-after" },
+    },
+  ]),
   logger: new Logger(() => (level, message) => {
-    if (level === "error") log.error({ process: "work" }, message.startsWith("Failed task") ? "a job failed" : "the queue reports an error");
+    if (level === "error")
+      log.error(
+        { process: "work" },
+        message.startsWith("Failed task") ? "a job failed" : "the queue reports an error",
+      );
   }),
 });
 log.info({ process: "work" }, "working");
@@ -57,10 +72,16 @@ async function seal(): Promise<void> {
   while (!isStopping) {
     try {
       for (const organizationId of await organizationIds()) {
-        while (!isStopping && (await inTransaction({ organizationId }, () => sealEvents(organizationId))) === 5000);
+        while (
+          !isStopping &&
+          (await inTransaction({ organizationId }, () => sealEvents(organizationId))) === 5000
+        );
       }
     } catch (error) {
-      log.warn({ process: "work", ...describeError(error) }, "the trail could not be sealed just now");
+      log.warn(
+        { process: "work", ...describeError(error) },
+        "the trail could not be sealed just now",
+      );
     }
     await sleep(1000);
   }

@@ -12,6 +12,7 @@ export const paths = {
   workers: "/workers",
   worker: (id: string) => `/workers/${id}`,
   newWorker: "/workers/new",
+  changeWorker: (id: string) => `/workers/${id}/change`,
   result: (workerId: string, date: string) => `/workers/${workerId}/days/${date}`,
   storedResult: (id: string) => `/results/${id}`,
   shift: (id: string) => `/shifts/${id}`,

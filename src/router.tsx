@@ -1,16 +1,16 @@
 import type { I18n } from "@lingui/core";
 import type { QueryClient } from "@tanstack/react-query";
 import { createBrowserRouter, redirect } from "react-router-dom";
-import { sessionQuery } from "./features/session/session";
 import { addCatalogue, isLocale } from "../shared/i18n";
+import { sessionQuery } from "./features/session/session";
 import { paths } from "./paths";
 import { dayRoutes } from "./routes/day-routes";
-import { RouteError } from "./routes/route-error";
 import { homeOf } from "./routes/home";
 import { Loading } from "./routes/loading";
 import { officerRoutes } from "./routes/officer-routes";
 import { peopleRoutes } from "./routes/people-routes";
 import { registerRoutes } from "./routes/register-routes";
+import { RouteError } from "./routes/route-error";
 import { SignedIn } from "./routes/signed-in";
 
 export function createRouter(queryClient: QueryClient, i18n: I18n) {
@@ -18,8 +18,17 @@ export function createRouter(queryClient: QueryClient, i18n: I18n) {
   const requireUser = async ({ request }: { request: Request }) => {
     const { user, pendingName } = await queryClient.ensureQueryData(sessionQuery);
     const url = new URL(request.url);
-    if (!user) throw redirect(pendingName ? paths.noAccess : `${paths.signIn}?returnTo=${encodeURIComponent(url.pathname + url.search)}`);
-    if (!document.cookie.includes("dinward.locale=") && isLocale(user.language) && user.language !== i18n.locale) {
+    if (!user)
+      throw redirect(
+        pendingName
+          ? paths.noAccess
+          : `${paths.signIn}?returnTo=${encodeURIComponent(url.pathname + url.search)}`,
+      );
+    if (
+      !document.cookie.includes("dinward.locale=") &&
+      isLocale(user.language) &&
+      user.language !== i18n.locale
+    ) {
       const { chooseLocale } = await import("./lib/i18n");
       await chooseLocale(i18n, user.language);
     }
@@ -50,7 +59,13 @@ export function createRouter(queryClient: QueryClient, i18n: I18n) {
             },
             {
               errorElement: <RouteError />,
-              children: [...dayRoutes, ...officerRoutes, ...registerRoutes, ...peopleRoutes, { path: "*", lazy: () => import("./routes/not-found") }],
+              children: [
+                ...dayRoutes,
+                ...officerRoutes,
+                ...registerRoutes,
+                ...peopleRoutes,
+                { path: "*", lazy: () => import("./routes/not-found") },
+              ],
             },
           ],
         },

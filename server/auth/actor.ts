@@ -1,5 +1,5 @@
-import { AppError } from "../lib/errors";
 import { row } from "../lib/db";
+import { AppError } from "../lib/errors";
 import { Actor, type Role } from "../lib/policy";
 
 interface UserRow {
@@ -26,6 +26,15 @@ export async function loadActor(userId: string, epoch: number): Promise<Actor> {
      FROM users u WHERE u.id = :userId AND u.revoked_at IS NULL`,
     { userId },
   );
-  if (!user || user.sessionEpoch !== epoch || user.grants.length === 0) throw new AppError("signed-out", 401);
-  return new Actor(user.id, user.organizationId, user.name, user.email, user.language, user.workerId, user.grants);
+  if (!user || user.sessionEpoch !== epoch || user.grants.length === 0)
+    throw new AppError("signed-out", 401);
+  return new Actor(
+    user.id,
+    user.organizationId,
+    user.name,
+    user.email,
+    user.language,
+    user.workerId,
+    user.grants,
+  );
 }

@@ -13,8 +13,12 @@ export interface ProviderIdentity {
 
 /** openid-client's strategy, with state and nonce beside PKCE whatever the provider supports. */
 class CodeFlow extends Strategy {
-  override authorizationRequestParams(...parameters: Parameters<Strategy["authorizationRequestParams"]>) {
-    const params = new URLSearchParams(super.authorizationRequestParams(...parameters) as URLSearchParams);
+  override authorizationRequestParams(
+    ...parameters: Parameters<Strategy["authorizationRequestParams"]>
+  ) {
+    const params = new URLSearchParams(
+      super.authorizationRequestParams(...parameters) as URLSearchParams,
+    );
     params.set("state", client.randomState());
     params.set("nonce", client.randomNonce());
     return params;
@@ -40,13 +44,26 @@ export class Provider {
   }
 
   private async discover() {
-    const { OIDC_ISSUER, OIDC_CLIENT_ID, OIDC_CLIENT_SECRET, OIDC_ALLOW_INSECURE, PUBLIC_URL } = this.config;
-    const configuration = await client.discovery(new URL(OIDC_ISSUER), OIDC_CLIENT_ID, OIDC_CLIENT_SECRET, undefined, {
-      execute: OIDC_ALLOW_INSECURE ? [client.allowInsecureRequests] : [],
-      timeout: 10,
-    });
+    const { OIDC_ISSUER, OIDC_CLIENT_ID, OIDC_CLIENT_SECRET, OIDC_ALLOW_INSECURE, PUBLIC_URL } =
+      this.config;
+    const configuration = await client.discovery(
+      new URL(OIDC_ISSUER),
+      OIDC_CLIENT_ID,
+      OIDC_CLIENT_SECRET,
+      undefined,
+      {
+        execute: OIDC_ALLOW_INSECURE ? [client.allowInsecureRequests] : [],
+        timeout: 10,
+      },
+    );
     const strategy = new CodeFlow(
-      { config: configuration, name: "oidc", sessionKey: "oidc", scope: "openid email profile", callbackURL: `${PUBLIC_URL}/api/auth/callback` },
+      {
+        config: configuration,
+        name: "oidc",
+        sessionKey: "oidc",
+        scope: "openid email profile",
+        callbackURL: `${PUBLIC_URL}/api/auth/callback`,
+      },
       (tokens, verified) => {
         this.identify(configuration, tokens).then(
           (identity) => verified(null, identity),
@@ -65,7 +82,10 @@ export class Provider {
     if (!claims) throw new Error("the provider sent no identity");
     let person: Record<string, unknown> = claims;
     if (person.email === undefined && configuration.serverMetadata().userinfo_endpoint) {
-      person = { ...claims, ...(await client.fetchUserInfo(configuration, tokens.access_token, claims.sub)) };
+      person = {
+        ...claims,
+        ...(await client.fetchUserInfo(configuration, tokens.access_token, claims.sub)),
+      };
     }
     const isVerified = person.email_verified === true || person.email_verified === "true";
     return {

@@ -25,11 +25,17 @@ class DatabaseStore implements Store {
   }
 
   async decrement(key: string) {
-    await sequelize().query("UPDATE rate_limits SET hits = greatest(hits - 1, 0) WHERE key = $1", { bind: [this.prefix + key], transaction: null });
+    await sequelize().query("UPDATE rate_limits SET hits = greatest(hits - 1, 0) WHERE key = $1", {
+      bind: [this.prefix + key],
+      transaction: null,
+    });
   }
 
   async resetKey(key: string) {
-    await sequelize().query("DELETE FROM rate_limits WHERE key = $1", { bind: [this.prefix + key], transaction: null });
+    await sequelize().query("DELETE FROM rate_limits WHERE key = $1", {
+      bind: [this.prefix + key],
+      transaction: null,
+    });
   }
 }
 

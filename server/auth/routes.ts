@@ -2,7 +2,12 @@ import { createHash } from "node:crypto";
 import type { Request, Response } from "express";
 import passport from "passport";
 import { z } from "zod";
-import { SessionView, SignInQuery, SignOutView, WorkerCodeInput } from "../../shared/schemas/session";
+import {
+  SessionView,
+  SignInQuery,
+  SignOutView,
+  WorkerCodeInput,
+} from "../../shared/schemas/session";
 import { recordAudit } from "../lib/audit";
 import { execute, inTransaction, row, rows } from "../lib/db";
 import { endpoint } from "../lib/endpoint";
@@ -37,14 +42,24 @@ async function findGranted(identity: ProviderIdentity): Promise<Candidate | null
   );
 }
 
-async function enter(request: Request, response: Response, user: Candidate, identity: ProviderIdentity): Promise<void> {
+async function enter(
+  request: Request,
+  response: Response,
+  user: Candidate,
+  identity: ProviderIdentity,
+): Promise<void> {
   await inTransaction({ organizationId: user.organizationId }, async () => {
     await execute(
       "UPDATE users SET issuer = $2, subject = $3, last_sign_in_at = now() WHERE id = $1",
       [user.id, identity.issuer, identity.subject],
     );
     const actor = await loadActor(user.id, user.epoch);
-    await recordAudit(actor, { action: user.issuer ? "sign-in" : "bind-sign-in", subjectKind: "user", subjectId: user.id, values: { issuer: identity.issuer } });
+    await recordAudit(actor, {
+      action: user.issuer ? "sign-in" : "bind-sign-in",
+      subjectKind: "user",
+      subjectId: user.id,
+      values: { issuer: identity.issuer },
+    });
   });
   await rotateSession(request, response, {
     userId: user.id,
@@ -58,52 +73,79 @@ async function enter(request: Request, response: Response, user: Candidate, iden
 const localPath = (value: unknown): string =>
   typeof value === "string" && /^\/(?![/\\])[^\r\n]*$/.test(value) ? value : "/";
 
-function authenticate(strategy: passport.Strategy, request: Request, response: Response): Promise<ProviderIdentity | null> {
+function authenticate(
+  strategy: passport.Strategy,
+  request: Request,
+  response: Response,
+): Promise<ProviderIdentity | null> {
   return new Promise((resolve, reject) => {
-    passport.authenticate(strategy, { session: false }, (error: unknown, identity?: ProviderIdentity | false) => {
-      if (error) reject(error);
-      else resolve(identity || null);
-    })(request, response, (error: unknown) => reject(error ?? new Error("the strategy did not answer")));
+    passport.authenticate(
+      strategy,
+      { session: false },
+      (error: unknown, identity?: ProviderIdentity | false) => {
+        if (error) reject(error);
+        else resolve(identity || null);
+      },
+    )(request, response, (error: unknown) =>
+      reject(error ?? new Error("the strategy did not answer")),
+    );
     // A redirect to the provider ends the answer here.
     response.once("finish", () => resolve(null));
   });
 }
 
 export function defineAuthRoutes(provider: Provider): void {
-  endpoint.get("/auth/sign-in", { summary: "Go to the provider to sign in", may: "public", query: SignInQuery }, async ({ request, response, query }) => {
-    const { strategy } = await provider.connect().catch(() => {
-      throw new AppError("provider-down", 503);
-    });
-    request.session.returnTo = localPath(query.returnTo);
-    await authenticate(strategy as never, request, response);
-  });
+  endpoint.get(
+    "/auth/sign-in",
+    { summary: "Go to the provider to sign in", may: "public", query: SignInQuery },
+    async ({ request, response, query }) => {
+      const { strategy } = await provider.connect().catch(() => {
+        throw new AppError("provider-down", 503);
+      });
+      request.session.returnTo = localPath(query.returnTo);
+      await authenticate(strategy as never, request, response);
+    },
+  );
 
-  endpoint.get("/auth/callback", { summary: "Come back from the provider", may: "public" }, async ({ request, response }) => {
-    const { returnTo } = request.session;
-    const { strategy } = await provider.connect().catch(() => {
-      throw new AppError("provider-down", 503);
-    });
-    const identity = await authenticate(strategy as never, request, response).catch(() => null);
-    if (response.headersSent) return;
-    if (!identity) {
-      response.redirect("/sign-in?failed=1");
-      return;
-    }
-    const user = await findGranted(identity);
-    const isGranted = user && (await hasGrant(user));
-    if (user && isGranted) {
-      await enter(request, response, user, identity);
-      response.redirect(localPath(returnTo));
-      return;
-    }
-    const { issuer, subject, email, name } = identity;
-    await rotateSession(request, response, { pending: { issuer, subject, email, name }, idToken: identity.idToken ?? undefined });
-    response.redirect("/no-access");
-  });
+  endpoint.get(
+    "/auth/callback",
+    { summary: "Come back from the provider", may: "public" },
+    async ({ request, response }) => {
+      const { returnTo } = request.session;
+      const { strategy } = await provider.connect().catch(() => {
+        throw new AppError("provider-down", 503);
+      });
+      const identity = await authenticate(strategy as never, request, response).catch(() => null);
+      if (response.headersSent) return;
+      if (!identity) {
+        response.redirect("/sign-in?failed=1");
+        return;
+      }
+      const user = await findGranted(identity);
+      const isGranted = user && (await hasGrant(user));
+      if (user && isGranted) {
+        await enter(request, response, user, identity);
+        response.redirect(localPath(returnTo));
+        return;
+      }
+      const { issuer, subject, email, name } = identity;
+      await rotateSession(request, response, {
+        pending: { issuer, subject, email, name },
+        idToken: identity.idToken ?? undefined,
+      });
+      response.redirect("/no-access");
+    },
+  );
 
   endpoint.post(
     "/auth/worker-code",
-    { summary: "Bind this sign-in to an employee number", may: "public", body: WorkerCodeInput, storesNothing: true, reply: z.object({ returnTo: z.string() }) },
+    {
+      summary: "Bind this sign-in to an employee number",
+      may: "public",
+      body: WorkerCodeInput,
+      storesNothing: true,
+      reply: z.object({ returnTo: z.string() }),
+    },
     async ({ request, response, body }) => {
       const { pending, idToken } = request.session;
       if (!pending) throw new AppError("signed-out", 401);
@@ -113,52 +155,88 @@ export function defineAuthRoutes(provider: Provider): void {
     },
   );
 
-  endpoint.post("/auth/sign-out", { summary: "Sign out here and at the provider", may: "public", storesNothing: true, reply: SignOutView }, async ({ request, response }) => {
-    const redirectTo = await provider.signOutUrl(request.session.idToken);
-    await new Promise<void>((resolve) => request.session.destroy(() => resolve()));
-    clearCookies(response);
-    return { redirectTo };
-  });
+  endpoint.post(
+    "/auth/sign-out",
+    {
+      summary: "Sign out here and at the provider",
+      may: "public",
+      storesNothing: true,
+      reply: SignOutView,
+    },
+    async ({ request, response }) => {
+      const redirectTo = await provider.signOutUrl(request.session.idToken);
+      await new Promise<void>((resolve) => request.session.destroy(() => resolve()));
+      clearCookies(response);
+      return { redirectTo };
+    },
+  );
 
-  endpoint.get("/session", { summary: "Who is signed in", may: "public", reply: SessionView }, async ({ request }) => {
-    const { userId, organizationId, epoch, pending } = request.session;
-    if (!userId || !organizationId) return { user: null, pendingName: pending?.name ?? null };
-    return inTransaction({ organizationId, readOnly: true }, async () => {
-      const actor = await loadActor(userId, epoch ?? 0).catch(() => null);
-      if (!actor) return { user: null, pendingName: null };
-      const organization = await row<{ name: string }>("SELECT name FROM organizations WHERE id = :organizationId", { organizationId });
-      const sites = await rows<{ id: string; name: string; timeZone: string; language: string }>(
-        `SELECT id, name, time_zone AS "timeZone", language FROM sites ORDER BY name`,
-      );
-      const reachable = sites.filter(({ id }) => actor.grants.some(({ siteId }) => siteId === null || siteId === id));
-      return {
-        user: {
-          id: actor.userId, name: actor.name, email: actor.email, language: actor.language, workerId: actor.workerId,
-          roles: [...new Set(actor.grants.map(({ role }) => role))], organizationName: organization?.name ?? "", sites: reachable,
-        },
-        pendingName: null,
-      };
-    });
-  });
+  endpoint.get(
+    "/session",
+    { summary: "Who is signed in", may: "public", reply: SessionView },
+    async ({ request }) => {
+      const { userId, organizationId, epoch, pending } = request.session;
+      if (!userId || !organizationId) return { user: null, pendingName: pending?.name ?? null };
+      return inTransaction({ organizationId, readOnly: true }, async () => {
+        const actor = await loadActor(userId, epoch ?? 0).catch(() => null);
+        if (!actor) return { user: null, pendingName: null };
+        const organization = await row<{ name: string }>(
+          "SELECT name FROM organizations WHERE id = :organizationId",
+          { organizationId },
+        );
+        const sites = await rows<{ id: string; name: string; timeZone: string; language: string }>(
+          `SELECT id, name, time_zone AS "timeZone", language FROM sites ORDER BY name`,
+        );
+        const reachable = sites.filter(({ id }) =>
+          actor.grants.some(({ siteId }) => siteId === null || siteId === id),
+        );
+        return {
+          user: {
+            id: actor.userId,
+            name: actor.name,
+            email: actor.email,
+            language: actor.language,
+            workerId: actor.workerId,
+            roles: [...new Set(actor.grants.map(({ role }) => role))],
+            organizationName: organization?.name ?? "",
+            sites: reachable,
+          },
+          pendingName: null,
+        };
+      });
+    },
+  );
 }
 
 async function hasGrant(user: Candidate): Promise<boolean> {
   return inTransaction({ organizationId: user.organizationId, readOnly: true }, async () =>
-    Boolean(await row("SELECT 1 AS one FROM role_grants WHERE user_id = :id AND revoked_at IS NULL LIMIT 1", { id: user.id })),
+    Boolean(
+      await row(
+        "SELECT 1 AS one FROM role_grants WHERE user_id = :id AND revoked_at IS NULL LIMIT 1",
+        { id: user.id },
+      ),
+    ),
   );
 }
 
 export const hashCode = (code: string): string =>
-  createHash("sha256").update(code.toUpperCase().replace(/[^A-Z0-9]/g, "")).digest("hex");
+  createHash("sha256")
+    .update(code.toUpperCase().replace(/[^A-Z0-9]/g, ""))
+    .digest("hex");
 
-async function bindWorker(pending: { issuer: string; subject: string; name: string }, input: z.infer<typeof WorkerCodeInput>): Promise<Candidate> {
+async function bindWorker(
+  pending: { issuer: string; subject: string; name: string },
+  input: z.infer<typeof WorkerCodeInput>,
+): Promise<Candidate> {
   const codeHash = hashCode(input.code);
-  const code = await inTransaction({ settings: { "app.sign_in_code": codeHash }, readOnly: true }, async () =>
-    row<{ organizationId: string; workerId: string; usedAt: Date | null; isExpired: boolean }>(
-      `SELECT organization_id AS "organizationId", worker_id AS "workerId", used_at AS "usedAt", expires_at <= now() AS "isExpired"
+  const code = await inTransaction(
+    { settings: { "app.sign_in_code": codeHash }, readOnly: true },
+    async () =>
+      row<{ organizationId: string; workerId: string; usedAt: Date | null; isExpired: boolean }>(
+        `SELECT organization_id AS "organizationId", worker_id AS "workerId", used_at AS "usedAt", expires_at <= now() AS "isExpired"
        FROM sign_in_codes WHERE code_hash = :codeHash`,
-      { codeHash },
-    ),
+        { codeHash },
+      ),
   );
   const unknown = () => unprocessable([issue(["code"], "code-unknown")]);
   if (!code) throw unknown();
@@ -170,25 +248,52 @@ async function bindWorker(pending: { issuer: string; subject: string; name: stri
       { workerId: code.workerId, employeeNumber: input.employeeNumber.trim() },
     );
     if (!worker) throw unknown();
-    const used = await execute("UPDATE sign_in_codes SET used_at = now() WHERE code_hash = $1 AND used_at IS NULL", [codeHash]);
+    const used = await execute(
+      "UPDATE sign_in_codes SET used_at = now() WHERE code_hash = $1 AND used_at IS NULL",
+      [codeHash],
+    );
     if (used === 0) throw unprocessable([issue(["code"], "code-used")]);
     const existing = await row<{ id: string; epoch: number }>(
       "SELECT id, session_epoch AS epoch FROM users WHERE worker_id = :workerId AND revoked_at IS NULL",
       { workerId: worker.id },
     );
-    const user = existing ?? (await row<{ id: string; epoch: number }>(
-      `INSERT INTO users (organization_id, name, worker_id, language) VALUES (:organizationId, :name, :workerId, :language)
+    const user =
+      existing ??
+      (await row<{ id: string; epoch: number }>(
+        `INSERT INTO users (organization_id, name, worker_id, language) VALUES (:organizationId, :name, :workerId, :language)
        RETURNING id, session_epoch AS epoch`,
-      { organizationId: code.organizationId, name: worker.name, workerId: worker.id, language: worker.language },
-    ));
+        {
+          organizationId: code.organizationId,
+          name: worker.name,
+          workerId: worker.id,
+          language: worker.language,
+        },
+      ));
     if (!user) throw new Error("a user was not made");
-    await execute("UPDATE users SET issuer = $2, subject = $3 WHERE id = $1", [user.id, pending.issuer, pending.subject]);
+    await execute("UPDATE users SET issuer = $2, subject = $3 WHERE id = $1", [
+      user.id,
+      pending.issuer,
+      pending.subject,
+    ]);
     await execute(
       `INSERT INTO role_grants (organization_id, user_id, role) SELECT $1, $2, 'worker'
        WHERE NOT EXISTS (SELECT 1 FROM role_grants WHERE user_id = $2 AND role = 'worker' AND revoked_at IS NULL)`,
       [code.organizationId, user.id],
     );
-    await recordAudit({ organizationId: code.organizationId }, { action: "bind-worker-sign-in", subjectKind: "user", subjectId: user.id, values: { workerId: worker.id } });
-    return { id: user.id, organizationId: code.organizationId, issuer: pending.issuer, epoch: user.epoch };
+    await recordAudit(
+      { organizationId: code.organizationId },
+      {
+        action: "bind-worker-sign-in",
+        subjectKind: "user",
+        subjectId: user.id,
+        values: { workerId: worker.id },
+      },
+    );
+    return {
+      id: user.id,
+      organizationId: code.organizationId,
+      issuer: pending.issuer,
+      epoch: user.epoch,
+    };
   });
 }

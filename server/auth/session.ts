@@ -28,7 +28,11 @@ const csrfCookie = "dinward.csrf";
 /** connect-pg-simple takes anything with pg's `query`; the one pool of the process serves it too. */
 const poolLike = {
   async query(text: string, values: unknown[] = []) {
-    const found = await sequelize().query(text, { bind: values, type: QueryTypes.RAW, transaction: null });
+    const found = await sequelize().query(text, {
+      bind: values,
+      type: QueryTypes.RAW,
+      transaction: null,
+    });
     const [rows] = found as [unknown[], unknown];
     return { rows, rowCount: Array.isArray(rows) ? rows.length : 0 };
   },
@@ -51,7 +55,13 @@ export function sessions(config: Config<"web">): RequestHandler[] {
     resave: false,
     saveUninitialized: false,
     rolling: true,
-    cookie: { httpOnly: true, sameSite: "lax", secure: isHttps, maxAge: config.SESSION_IDLE_MIN * 60_000, path: "/" },
+    cookie: {
+      httpOnly: true,
+      sameSite: "lax",
+      secure: isHttps,
+      maxAge: config.SESSION_IDLE_MIN * 60_000,
+      path: "/",
+    },
   });
   const absolute = (request: Request, response: Response, next: NextFunction) => {
     const { startedAt } = request.session;
@@ -71,25 +81,41 @@ export function clearCookies(response: Response): void {
 }
 
 /** A new session id with nothing of the old session: whoever knew the old id gains nothing. */
-export async function rotateSession(request: Request, response: Response, data: Partial<session.SessionData>): Promise<void> {
-  await new Promise<void>((resolve, reject) => request.session.regenerate((error) => (error ? reject(error) : resolve())));
+export async function rotateSession(
+  request: Request,
+  response: Response,
+  data: Partial<session.SessionData>,
+): Promise<void> {
+  await new Promise<void>((resolve, reject) =>
+    request.session.regenerate((error) => (error ? reject(error) : resolve())),
+  );
   const csrf = randomBytes(24).toString("base64url");
   Object.assign(request.session, { ...data, csrf, startedAt: Date.now() });
-  await new Promise<void>((resolve, reject) => request.session.save((error) => (error ? reject(error) : resolve())));
+  await new Promise<void>((resolve, reject) =>
+    request.session.save((error) => (error ? reject(error) : resolve())),
+  );
   const { secure } = request.session.cookie;
-  response.cookie(csrfCookie, csrf, { httpOnly: false, sameSite: "lax", secure: Boolean(secure), path: "/" });
+  response.cookie(csrfCookie, csrf, {
+    httpOnly: false,
+    sameSite: "lax",
+    secure: Boolean(secure),
+    path: "/",
+  });
 }
 
 const safe = new Set(["GET", "HEAD", "OPTIONS"]);
 
 /** A change needs the session's own token in a header, which another site can neither read nor send. */
 export function refuseForgery(request: Request, _response: Response, next: NextFunction): void {
-  if (safe.has(request.method)) return next();
+  next(isForged(request) ? new AppError("csrf", 403) : undefined);
+}
+
+function isForged(request: Request): boolean {
+  if (safe.has(request.method)) return false;
   const site = request.get("sec-fetch-site");
-  if (site && site !== "same-origin" && site !== "none") return next(new AppError("csrf", 403));
+  if (site && site !== "same-origin" && site !== "none") return true;
   const { csrf, userId, pending } = request.session;
   // Without a session there is nothing to forge: the endpoint answers 401 by itself.
-  if (!userId && !pending) return next();
-  if (!csrf || request.get("x-csrf-token") !== csrf) return next(new AppError("csrf", 403));
-  next();
+  if (!userId && !pending) return false;
+  return !csrf || request.get("x-csrf-token") !== csrf;
 }

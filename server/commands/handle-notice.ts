@@ -11,7 +11,11 @@ export type NoticeAction = "hold" | "send-now";
  *
  * @throws AppError notice-sent-already, where nothing of it can be held or sent any more.
  */
-export async function handleNotices(actor: Actor, noticeIds: readonly string[], action: NoticeAction): Promise<void> {
+export async function handleNotices(
+  actor: Actor,
+  noticeIds: readonly string[],
+  action: NoticeAction,
+): Promise<void> {
   const ids = `{${noticeIds.join(",")}}`;
   const from = action === "hold" ? ["waiting"] : ["waiting", "held"];
   const found = await rows<{ id: string }>(
@@ -28,6 +32,11 @@ export async function handleNotices(actor: Actor, noticeIds: readonly string[], 
   );
   for (const id of open) {
     if (action === "send-now") await queueNotice(actor.organizationId, id, new Date());
-    await recordAudit(actor, { action: `${action}-notice`, subjectKind: "notice", subjectId: id, values: {} });
+    await recordAudit(actor, {
+      action: `${action}-notice`,
+      subjectKind: "notice",
+      subjectId: id,
+      values: {},
+    });
   }
 }

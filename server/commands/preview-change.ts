@@ -1,11 +1,11 @@
 import { evaluateDay } from "../../shared/acoustics/day";
 import { summarizeDay } from "../../shared/day/summarize-day";
 import type { ChangePreview } from "../../shared/schemas/site";
-import { type Concerned, concernedDays } from "./mark-days-stale";
 import { execute, rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
 import { dayPolicy } from "../policies";
 import { hydrateDays, resolveDays, ruleSetsOf } from "../queries/day-inputs";
+import { type Concerned, concernedDays } from "./mark-days-stale";
 
 /** More are not looked at within one request. */
 const MOST_DAYS = 5000;
@@ -29,7 +29,11 @@ const NONE = "none";
  * Who would change verdict if a change were made: the change is made, the days it touches are evaluated from the inputs
  * as they then are, and it is taken back. So the preview can't differ from the change. Compared with the stored results.
  */
-export async function previewChange(actor: Actor, where: Concerned, change: () => Promise<unknown>): Promise<ChangePreview> {
+export async function previewChange(
+  actor: Actor,
+  where: Concerned,
+  change: () => Promise<unknown>,
+): Promise<ChangePreview> {
   const values: Record<string, string> = {};
   const value = (given: string) => {
     const name = `value${Object.keys(values).length}`;
@@ -58,26 +62,47 @@ export async function previewChange(actor: Actor, where: Concerned, change: () =
       // No shift, or imported: nothing here is computed from what changes.
       if (!now) continue;
       const compared: [Line, string | null, string | null][] = [
-        ["without-protection", day.verdictOutside, now.verdictOutside], ["at-the-ear", day.verdictAtEar, now.verdictAtEar], ["protector", day.word, now.word],
+        ["without-protection", day.verdictOutside, now.verdictOutside],
+        ["at-the-ear", day.verdictAtEar, now.verdictAtEar],
+        ["protector", day.word, now.word],
       ];
       const changed = compared.filter(([, before, then]) => before !== then);
       if (changed.length === 0) continue;
       changedDays += 1;
       for (const [line, before, then] of changed) {
-        if (changes.length < MOST_CHANGES) changes.push({ workerId, workerName, date, line, before: before ?? NONE, after: then ?? NONE });
+        if (changes.length < MOST_CHANGES)
+          changes.push({
+            workerId,
+            workerName,
+            date,
+            line,
+            before: before ?? NONE,
+            after: then ?? NONE,
+          });
       }
     }
   }
   await execute("ROLLBACK TO SAVEPOINT preview");
-  return { days: total, workers: new Set(days.map(({ workerId }) => workerId)).size, changes, changedDays, tooMany: total - days.length };
+  return {
+    days: total,
+    workers: new Set(days.map(({ workerId }) => workerId)).size,
+    changes,
+    changedDays,
+    tooMany: total - days.length,
+  };
 }
 
 async function evaluateAsTheyStand(keys: readonly { workerId: string; date: string }[]) {
   const resolved = await resolveDays(keys);
   const inputs = await hydrateDays(resolved);
-  return new Map(resolved.map(({ workerId, date, refs }, index) => {
-    const { governing, comparison } = ruleSetsOf(refs);
-    const input = inputs[index]!;
-    return [`${workerId} ${date}`, summarizeDay(input, evaluateDay(input, governing, comparison), governing)];
-  }));
+  return new Map(
+    resolved.map(({ workerId, date, refs }, index) => {
+      const { governing, comparison } = ruleSetsOf(refs);
+      const input = inputs[index]!;
+      return [
+        `${workerId} ${date}`,
+        summarizeDay(input, evaluateDay(input, governing, comparison), governing),
+      ];
+    }),
+  );
 }

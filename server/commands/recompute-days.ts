@@ -1,12 +1,24 @@
 import { createHash } from "node:crypto";
 import { evaluateDay } from "../../shared/acoustics/day";
 import { METHOD_VERSION } from "../../shared/acoustics/methods";
-import type { CriterionResult, DayEvaluation, DayInput, RuleSetVersion } from "../../shared/acoustics/types";
+import type {
+  CriterionResult,
+  DayEvaluation,
+  DayInput,
+  RuleSetVersion,
+} from "../../shared/acoustics/types";
 import { summarizeDay } from "../../shared/day/summarize-day";
 import { findCauses } from "../../shared/findings/causes";
 import { canonicalJson } from "../lib/audit";
 import { execute, rows } from "../lib/db";
-import { type DayKey, type DayRefs, hydrateDays, type ResolvedDay, resolveDays, ruleSetsOf } from "../queries/day-inputs";
+import {
+  type DayKey,
+  type DayRefs,
+  hydrateDays,
+  type ResolvedDay,
+  resolveDays,
+  ruleSetsOf,
+} from "../queries/day-inputs";
 import { type DayCauses, type OpenedFinding, updateFindings } from "./update-findings";
 
 export interface RecomputedDay extends DayKey {
@@ -25,11 +37,16 @@ export interface Recomputation {
  * same result row, so running it again changes nothing. The days are locked in one order: two runs never deadlock, and
  * the later one sees the inputs of the earlier.
  */
-export async function recomputeDays(organizationId: string, keys: readonly DayKey[]): Promise<Recomputation> {
+export async function recomputeDays(
+  organizationId: string,
+  keys: readonly DayKey[],
+): Promise<Recomputation> {
   if (keys.length === 0) return { days: [], opened: [] };
   const days = JSON.stringify(keys.map(({ workerId, date }) => ({ workerId, date })));
-  const heads = await rows<DayKey & { currentResultId: string | null }>(
-    `SELECT d.worker_id AS "workerId", d.date::text AS date, d.current_result_id AS "currentResultId"
+  const heads = await rows<DayKey & { currentResultId: string | null; importedId: string | null }>(
+    `SELECT d.worker_id AS "workerId", d.date::text AS date, d.current_result_id AS "currentResultId",
+       (SELECT r.id FROM day_results r WHERE r.worker_id = d.worker_id AND r.date = d.date AND r.origin = 'imported'
+        ORDER BY (r.id = d.current_result_id) DESC NULLS LAST, r.computed_at DESC LIMIT 1) AS "importedId"
      FROM days d JOIN jsonb_to_recordset(CAST(:days AS jsonb)) AS x("workerId" uuid, date date) ON x."workerId" = d.worker_id AND x.date = d.date
      ORDER BY d.worker_id, d.date FOR UPDATE OF d`,
     { days },
@@ -41,24 +58,44 @@ export async function recomputeDays(organizationId: string, keys: readonly DayKe
 
   const before = new Map(heads.map((head) => [keyOf(head), head.currentResultId]));
   const after = heads.map((head): RecomputedDay => {
-    const resultId = resultIds.get(keyOf(head)) ?? null;
-    return { workerId: head.workerId, date: head.date, resultId, isChanged: before.get(keyOf(head)) !== resultId };
+    // A day without a shift keeps what was imported for it.
+    const resultId = resultIds.get(keyOf(head)) ?? head.importedId;
+    return {
+      workerId: head.workerId,
+      date: head.date,
+      resultId,
+      isChanged: before.get(keyOf(head)) !== resultId,
+    };
   });
   const context = new Map(resolved.map((day) => [keyOf(day), day]));
   await execute(
     `UPDATE days d SET current_result_id = x."resultId", is_stale = FALSE, site_id = coalesce(x."siteId", d.site_id), crew_id = coalesce(x."crewId", d.crew_id)
      FROM jsonb_to_recordset($1::jsonb) AS x("workerId" uuid, date date, "resultId" uuid, "siteId" uuid, "crewId" uuid)
      WHERE d.worker_id = x."workerId" AND d.date = x.date`,
-    [JSON.stringify(after.map((day) => ({ ...day, siteId: context.get(keyOf(day))?.siteId, crewId: context.get(keyOf(day))?.crewId })))],
+    [
+      JSON.stringify(
+        after.map((day) => ({
+          ...day,
+          siteId: context.get(keyOf(day))?.siteId,
+          crewId: context.get(keyOf(day))?.crewId,
+        })),
+      ),
+    ],
   );
 
   const causes = after.map((day): DayCauses => {
-    const found = computed.find((one) => one.day.workerId === day.workerId && one.day.date === day.date);
+    const found = computed.find(
+      (one) => one.day.workerId === day.workerId && one.day.date === day.date,
+    );
     return {
-      workerId: day.workerId, date: day.date, resultId: day.resultId,
-      siteId: found?.day.siteId ?? null, jobId: found?.day.jobId ?? null,
+      workerId: day.workerId,
+      date: day.date,
+      resultId: day.resultId,
+      siteId: found?.day.siteId ?? null,
+      jobId: found?.day.jobId ?? null,
       causes: found ? findCauses(found.input, found.evaluation, found.governing) : [],
-      input: found?.input ?? null, governing: found?.governing ?? null,
+      input: found?.input ?? null,
+      governing: found?.governing ?? null,
     };
   });
   const opened = await updateFindings(organizationId, causes);
@@ -86,17 +123,29 @@ export function hashOf(refs: DayRefs, methodVersion: number = METHOD_VERSION): s
   return createHash("sha256").update(canonicalJson({ refs, methodVersion })).digest("hex");
 }
 
-async function storeResults(organizationId: string, computed: readonly ComputedDay[]): Promise<Map<string, string>> {
+async function storeResults(
+  organizationId: string,
+  computed: readonly ComputedDay[],
+): Promise<Map<string, string>> {
   if (computed.length === 0) return new Map();
   const records = computed.map(({ day, input, evaluation, governing, hash }) => {
     const { governingCriteria: _, ...summary } = summarizeDay(input, evaluation, governing);
     const isOwn = ({ ruleSetKey }: CriterionResult) => ruleSetKey === governing.key;
     return {
       ...summary,
-      workerId: day.workerId, siteId: day.siteId, hash, methodVersion: evaluation.methodVersion,
-      shiftMin: evaluation.shiftMin, unaccountedMin: evaluation.unaccountedMin, grade: evaluation.grade,
-      isProjected: evaluation.isProjected, isKept: evaluation.keptReasons.length > 0,
-      criteria: { governing: evaluation.criteria.filter(isOwn), comparison: evaluation.criteria.filter((result) => !isOwn(result)) },
+      workerId: day.workerId,
+      siteId: day.siteId,
+      hash,
+      methodVersion: evaluation.methodVersion,
+      shiftMin: evaluation.shiftMin,
+      unaccountedMin: evaluation.unaccountedMin,
+      grade: evaluation.grade,
+      isProjected: evaluation.isProjected,
+      isKept: evaluation.keptReasons.length > 0,
+      criteria: {
+        governing: evaluation.criteria.filter(isOwn),
+        comparison: evaluation.criteria.filter((result) => !isOwn(result)),
+      },
       refs: day.refs,
     };
   });

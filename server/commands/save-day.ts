@@ -1,16 +1,36 @@
 import { randomUUID } from "node:crypto";
 import type { ProblemIssue } from "../../shared/schemas/problem";
-import { checkShiftFacts, type DaySaveView, DayRowInput, type WorkedRowInput } from "../../shared/schemas/shift";
-import { addDays, atLocalTime, localDate } from "../../shared/time/zone";
+import {
+  checkShiftFacts,
+  DayRowInput,
+  type DaySaveView,
+  type WorkedRowInput,
+} from "../../shared/schemas/shift";
+import { addDays, localDate } from "../../shared/time/zone";
 import { recordAuditMany } from "../lib/audit";
 import { execute, row, rows } from "../lib/db";
 import { AppError, issue } from "../lib/errors";
 import type { Actor } from "../lib/policy";
-import type { Crew } from "../models/worker";
 import { Run } from "../models/instrument";
+import type { Crew } from "../models/worker";
 import { dayFiguresOf } from "../queries/day-figures";
-import { presentSavedShift, readingsOfDay, type SavedShiftRow, savedShifts } from "../queries/saved-shifts";
 import { entryNotices } from "../queries/entry-notices";
+import {
+  presentSavedShift,
+  readingsOfDay,
+  type SavedShiftRow,
+  savedShifts,
+} from "../queries/saved-shifts";
+import {
+  employmentIssues,
+  futureIssues,
+  isSameShift,
+  lockWorkers,
+  overlapIssues,
+  startOf,
+  unknownTaskIssues,
+  wholeDayIssues,
+} from "./check-shift";
 import { recomputeDays } from "./recompute-days";
 import { correctRun, recordRun } from "./record-run";
 import { scheduleNotices } from "./schedule-notices";
@@ -28,16 +48,21 @@ interface Candidate {
   row: WorkedRowInput;
 }
 
-/** Shifts may be entered for a day that has begun somewhere in the site's zone. */
-const isFuture = (date: string, today: string) => date > today;
-
 /**
  * Stores the rows of a crew's day that stand, in one transaction, and says of the others what is wrong. Nothing of a
  * refused row is written; nobody's newer revision is overwritten.
  */
-export async function saveDay(actor: Actor, crew: Crew, date: string, given: readonly Record<string, unknown>[]): Promise<DaySaveView> {
+export async function saveDay(
+  actor: Actor,
+  crew: Crew,
+  date: string,
+  given: readonly Record<string, unknown>[],
+): Promise<DaySaveView> {
   const entryId = randomUUID();
-  const site = await row<{ timeZone: string }>(`SELECT time_zone AS "timeZone" FROM sites WHERE id = :id`, { id: crew.siteId });
+  const site = await row<{ timeZone: string }>(
+    `SELECT time_zone AS "timeZone" FROM sites WHERE id = :id`,
+    { id: crew.siteId },
+  );
   if (!site) throw new AppError("not-found", 404);
   const today = localDate(new Date(), site.timeZone);
   const refused: DaySaveView["refused"] = [];
@@ -49,101 +74,205 @@ export async function saveDay(actor: Actor, crew: Crew, date: string, given: rea
     const parsed = DayRowInput.safeParse(value);
     const workerId = typeof value.workerId === "string" ? value.workerId : null;
     if (!parsed.success) {
-      refused.push({ index, workerId, issues: parsed.error.issues.map((found) => ({ path: found.path as (string | number)[], code: found.code, params: boundsOf(found) })) });
+      refused.push({
+        index,
+        workerId,
+        issues: parsed.error.issues.map((found) => ({
+          path: found.path as (string | number)[],
+          code: found.code,
+          params: boundsOf(found),
+        })),
+      });
       return;
     }
     if (parsed.data.kind !== "worked") {
-      absences.push({ index, workerId: parsed.data.workerId, isAbsent: parsed.data.kind === "absent" });
+      absences.push({
+        index,
+        workerId: parsed.data.workerId,
+        isAbsent: parsed.data.kind === "absent",
+      });
       return;
     }
-    const shape: { value: WorkedRowInput; issues: { path: (string | number)[]; params: Record<string, string | number> & { code: string } }[] } = { value: parsed.data, issues: [] };
+    const shape: {
+      value: WorkedRowInput;
+      issues: {
+        path: (string | number)[];
+        params: Record<string, string | number> & { code: string };
+      }[];
+    } = { value: parsed.data, issues: [] };
     checkShiftFacts(shape);
     if (shape.issues.length > 0) {
-      refused.push({ index, workerId, issues: shape.issues.map(({ path, params: { code, ...params } }) => ({ path, code, params })) });
+      refused.push({
+        index,
+        workerId,
+        issues: shape.issues.map(({ path, params: { code, ...params } }) => ({
+          path,
+          code,
+          params,
+        })),
+      });
     } else worked.push({ index, row: parsed.data });
   });
 
-  const workerIds = [...new Set([...worked.map(({ row: { workerId } }) => workerId), ...absences.map(({ workerId }) => workerId)])];
+  const workerIds = [
+    ...new Set([
+      ...worked.map(({ row: { workerId } }) => workerId),
+      ...absences.map(({ workerId }) => workerId),
+    ]),
+  ];
   await lockWorkers(workerIds);
   const members = await membersOf(crew.id, date, workerIds);
-  const taskIds = await knownTasks(crew.siteId, worked.flatMap(({ row: { tasks } }) => tasks.map(({ taskId }) => taskId)));
-  const instruments = await knownInstruments(worked.flatMap(({ row: { reading } }) => (reading ? [reading.instrumentId] : [])));
-  const nearby = workerIds.length === 0 ? [] : await savedShifts(
-    "s.worker_id = ANY (CAST(:workerIds AS uuid[])) AND s.date BETWEEN CAST(:from AS date) AND CAST(:to AS date)",
-    { workerIds: `{${workerIds.join(",")}}`, from: addDays(date, -2), to: addDays(date, 2) },
+  const taskIds = await knownTasks(
+    crew.siteId,
+    worked.flatMap(({ row: { tasks } }) => tasks.map(({ taskId }) => taskId)),
   );
+  const instruments = await knownInstruments(
+    worked.flatMap(({ row: { reading } }) => (reading ? [reading.instrumentId] : [])),
+  );
+  const nearby =
+    workerIds.length === 0
+      ? []
+      : await savedShifts(
+          "s.worker_id = ANY (CAST(:workerIds AS uuid[])) AND s.date BETWEEN CAST(:from AS date) AND CAST(:to AS date)",
+          { workerIds: `{${workerIds.join(",")}}`, from: addDays(date, -2), to: addDays(date, 2) },
+        );
   const shiftsOf = (workerId: string) => nearby.filter((shift) => shift.workerId === workerId);
 
-  const accepted: { index: number; row: WorkedRowInput; shift: CheckedShift | null; current: SavedShiftRow | null }[] = [];
+  const accepted: {
+    index: number;
+    row: WorkedRowInput;
+    shift: CheckedShift | null;
+    current: SavedShiftRow | null;
+  }[] = [];
   const taken = new Set<string>();
   for (const { index, row: one } of worked) {
     const issues: ProblemIssue[] = [];
     const member = members.get(one.workerId);
     if (!member?.isMember) issues.push(issue(["workerId"], "not-in-crew"));
-    else if (date < member.hiredOn) issues.push(issue(["date"], "before-hire", { hiredOn: member.hiredOn }));
-    else if (member.leftOn !== null && date > member.leftOn) issues.push(issue(["date"], "after-leaving", { leftOn: member.leftOn }));
-    if (isFuture(date, today)) issues.push(issue(["date"], "in-the-future", { today }));
+    else issues.push(...employmentIssues(date, member));
+    issues.push(...futureIssues(date, today));
     if (taken.has(one.workerId)) issues.push(issue(["workerId"], "worker-twice"));
     taken.add(one.workerId);
-    if (one.lengthMin === 1440 && !one.confirmsWholeDay) issues.push(issue(["lengthMin"], "whole-day-unconfirmed"));
-    one.tasks.forEach(({ taskId }, position) => {
-      if (!taskIds.has(taskId)) issues.push(issue(["tasks", position, "taskId"], "task-unknown"));
-    });
-    if (one.reading && !instruments.has(one.reading.instrumentId)) issues.push(issue(["reading", "instrumentId"], "instrument-unknown"));
+    issues.push(
+      ...wholeDayIssues(one.lengthMin, one.confirmsWholeDay),
+      ...unknownTaskIssues(one.tasks, taskIds),
+    );
+    if (one.reading && !instruments.has(one.reading.instrumentId))
+      issues.push(issue(["reading", "instrumentId"], "instrument-unknown"));
 
-    const own = shiftsOf(one.workerId).find((shift) => (one.shiftId ? shift.shiftId === one.shiftId : shift.crewId === crew.id && shift.date === date)) ?? null;
+    const own =
+      shiftsOf(one.workerId).find((shift) =>
+        one.shiftId
+          ? shift.shiftId === one.shiftId
+          : shift.crewId === crew.id && shift.date === date,
+      ) ?? null;
     const isStale = one.shiftId === null ? own !== null : own?.revision !== one.revision;
-    if (isStale && !(own && isSame(one, own))) {
-      conflicts.push({ index, workerId: one.workerId, current: own ? presentSavedShift(own) : null });
+    if (isStale && !(own && isSameShift(one, own))) {
+      conflicts.push({
+        index,
+        workerId: one.workerId,
+        current: own ? presentSavedShift(own) : null,
+      });
       continue;
     }
 
     const startsAt = startOf(date, one, site.timeZone, issues);
     if (startsAt) {
-      const endsAt = startsAt.getTime() + one.lengthMin * 60_000;
-      const other = shiftsOf(one.workerId).find((shift) => shift.shiftId !== own?.shiftId
-        && shift.startsAt.getTime() < endsAt && startsAt.getTime() < shift.startsAt.getTime() + shift.lengthMin * 60_000);
-      if (other) issues.push(issue(["localStart"], "shifts-overlap", { date: other.date, localStart: other.localStart, lengthMin: other.lengthMin }));
+      const others = shiftsOf(one.workerId).filter((shift) => shift.shiftId !== own?.shiftId);
+      issues.push(...overlapIssues({ startsAt, lengthMin: one.lengthMin }, others));
     }
-    const isUnchanged = own !== null && isSame(one, own);
-    if (own && !isUnchanged && one.reason === null) issues.push(issue(["reason"], "reason-missing"));
+    const isUnchanged = own !== null && isSameShift(one, own);
+    if (own && !isUnchanged && one.reason === null)
+      issues.push(issue(["reason"], "reason-missing"));
     if (issues.length > 0 || !startsAt) {
       refused.push({ index, workerId: one.workerId, issues });
       continue;
     }
-    const shift: CheckedShift | null = isUnchanged ? null : {
-      shiftId: own?.shiftId ?? null, number: (own?.revision ?? 0) + 1, siteId: crew.siteId, workerId: one.workerId, crewId: crew.id, date,
-      timeZone: site.timeZone, localStart: one.localStart, lengthMin: one.lengthMin, startsAt, unaccounted: one.unaccounted, tasks: one.tasks,
-      note: one.note, reason: own ? one.reason : null,
-    };
+    const shift: CheckedShift | null = isUnchanged
+      ? null
+      : {
+          shiftId: own?.shiftId ?? null,
+          number: (own?.revision ?? 0) + 1,
+          siteId: crew.siteId,
+          workerId: one.workerId,
+          crewId: crew.id,
+          date,
+          timeZone: site.timeZone,
+          localStart: one.localStart,
+          lengthMin: one.lengthMin,
+          startsAt,
+          unaccounted: one.unaccounted,
+          tasks: one.tasks,
+          note: one.note,
+          reason: own ? one.reason : null,
+        };
     accepted.push({ index, row: one, shift, current: own });
   }
 
-  const toStore = accepted.filter((one): one is typeof one & { shift: CheckedShift } => one.shift !== null);
-  const ids = await storeShifts(actor, entryId, toStore.map(({ shift }) => shift));
+  const toStore = accepted.filter(
+    (one): one is typeof one & { shift: CheckedShift } => one.shift !== null,
+  );
+  const ids = await storeShifts(
+    actor,
+    entryId,
+    toStore.map(({ shift }) => shift),
+  );
   const idOf = new Map(toStore.map(({ index }, place) => [index, ids[place] as string]));
   for (const { index, row: one, current } of accepted) {
-    if (one.reading) await storeReading(actor, crew.siteId, date, one, idOf.get(index) ?? current?.shiftId ?? null, entryId);
+    if (one.reading)
+      await storeReading(
+        actor,
+        crew.siteId,
+        date,
+        one,
+        idOf.get(index) ?? current?.shiftId ?? null,
+        entryId,
+      );
   }
   const absent = await storeAbsences(actor, crew, date, absences, members, nearby, refused);
 
-  const keys = accepted.filter(({ shift, row: { reading } }) => shift !== null || reading !== null).map(({ row: { workerId } }) => ({ workerId, date }));
+  const keys = accepted
+    .filter(({ shift, row: { reading } }) => shift !== null || reading !== null)
+    .map(({ row: { workerId } }) => ({ workerId, date }));
   const recomputed = await recomputeDays(actor.organizationId, keys);
-  await scheduleNotices({ organizationId: actor.organizationId, author: actor, entryId, siteId: crew.siteId, recomputed });
+  await scheduleNotices({
+    organizationId: actor.organizationId,
+    author: actor,
+    entryId,
+    siteId: crew.siteId,
+    recomputed,
+  });
 
   const savedIds = accepted.map(({ row: { workerId } }) => workerId);
   const figures = await dayFiguresOf(savedIds, date);
   const readings = await readingsOfDay(savedIds, date);
-  const current = savedIds.length === 0 ? [] : await savedShifts("s.worker_id = ANY (CAST(:ids AS uuid[])) AND s.crew_id = :crewId AND s.date = :date",
-    { ids: `{${savedIds.join(",")}}`, crewId: crew.id, date });
+  const current =
+    savedIds.length === 0
+      ? []
+      : await savedShifts(
+          "s.worker_id = ANY (CAST(:ids AS uuid[])) AND s.crew_id = :crewId AND s.date = :date",
+          { ids: `{${savedIds.join(",")}}`, crewId: crew.id, date },
+        );
   return {
     entryId,
     saved: [
       ...accepted.map(({ index, row: { workerId } }) => {
         const stored = current.find((shift) => shift.workerId === workerId);
-        return { index, workerId, shift: stored ? presentSavedShift(stored) : null, figures: figures.get(workerId) ?? null, readings: readings.get(workerId) ?? [] };
+        return {
+          index,
+          workerId,
+          shift: stored ? presentSavedShift(stored) : null,
+          figures: figures.get(workerId) ?? null,
+          readings: readings.get(workerId) ?? [],
+        };
       }),
-      ...absent.map(({ index, workerId }) => ({ index, workerId, shift: null, figures: null, readings: [] })),
+      ...absent.map(({ index, workerId }) => ({
+        index,
+        workerId,
+        shift: null,
+        figures: null,
+        readings: [],
+      })),
     ].sort((a, b) => a.index - b.index),
     refused: refused.sort((a, b) => a.index - b.index),
     conflicts,
@@ -152,93 +281,134 @@ export async function saveDay(actor: Actor, crew: Crew, date: string, given: rea
 }
 
 const boundsOf = (found: object): Record<string, string | number> =>
-  Object.fromEntries(Object.entries(found).filter(([name, value]) => ["minimum", "maximum"].includes(name) && typeof value === "number"));
+  Object.fromEntries(
+    Object.entries(found).filter(
+      ([name, value]) => ["minimum", "maximum"].includes(name) && typeof value === "number",
+    ),
+  );
 
-/** Two savings of one worker's day go one after the other. */
-async function lockWorkers(workerIds: readonly string[]): Promise<void> {
-  if (workerIds.length > 0) await rows("SELECT id FROM workers WHERE id = ANY (CAST(:ids AS uuid[])) ORDER BY id FOR NO KEY UPDATE", { ids: `{${workerIds.join(",")}}` });
-}
-
-async function membersOf(crewId: string, date: string, workerIds: readonly string[]): Promise<Map<string, Member>> {
-  const found = workerIds.length === 0 ? [] : await rows<Member>(
-    `SELECT w.id AS "workerId", w.hired_on::text AS "hiredOn", w.left_on::text AS "leftOn",
+async function membersOf(
+  crewId: string,
+  date: string,
+  workerIds: readonly string[],
+): Promise<Map<string, Member>> {
+  const found =
+    workerIds.length === 0
+      ? []
+      : await rows<Member>(
+          `SELECT w.id AS "workerId", w.hired_on::text AS "hiredOn", w.left_on::text AS "leftOn",
        EXISTS (SELECT 1 FROM crew_memberships m WHERE m.crew_id = :crewId AND m.worker_id = w.id AND m.valid @> CAST(:date AS date)) AS "isMember"
      FROM workers w WHERE w.id = ANY (CAST(:ids AS uuid[]))`,
-    { crewId, date, ids: `{${workerIds.join(",")}}` },
-  );
+          { crewId, date, ids: `{${workerIds.join(",")}}` },
+        );
   return new Map(found.map((member) => [member.workerId, member]));
 }
 
 async function knownTasks(siteId: string, taskIds: readonly string[]): Promise<Set<string>> {
-  const found = taskIds.length === 0 ? [] : await rows<{ id: string }>(
-    "SELECT id FROM tasks WHERE site_id = :siteId AND id = ANY (CAST(:ids AS uuid[]))",
-    { siteId, ids: `{${[...new Set(taskIds)].join(",")}}` },
-  );
+  const found =
+    taskIds.length === 0
+      ? []
+      : await rows<{ id: string }>(
+          "SELECT id FROM tasks WHERE site_id = :siteId AND id = ANY (CAST(:ids AS uuid[]))",
+          { siteId, ids: `{${[...new Set(taskIds)].join(",")}}` },
+        );
   return new Set(found.map(({ id }) => id));
 }
 
 async function knownInstruments(ids: readonly string[]): Promise<Set<string>> {
-  const found = ids.length === 0 ? [] : await rows<{ id: string }>("SELECT id FROM instruments WHERE id = ANY (CAST(:ids AS uuid[]))", { ids: `{${[...new Set(ids)].join(",")}}` });
+  const found =
+    ids.length === 0
+      ? []
+      : await rows<{ id: string }>(
+          "SELECT id FROM instruments WHERE id = ANY (CAST(:ids AS uuid[]))",
+          { ids: `{${[...new Set(ids)].join(",")}}` },
+        );
   return new Set(found.map(({ id }) => id));
 }
 
-export function startOf(date: string, one: { localStart: string; whichHour: "first" | "second" | null }, timeZone: string, issues: ProblemIssue[]): Date | null {
-  const local = atLocalTime(date, one.localStart, timeZone);
-  if (local.kind === "one") return local.instant;
-  if (local.kind === "skipped") {
-    issues.push(issue(["localStart"], "time-skipped", { localStart: one.localStart }));
-    return null;
-  }
-  if (one.whichHour !== null) return local[one.whichHour];
-  issues.push(issue(["whichHour"], "time-twice", { localStart: one.localStart }));
-  return null;
-}
-
-/** The row says what is stored already: a double click or a second tab changes nothing. */
-function isSame(one: WorkedRowInput, saved: SavedShiftRow): boolean {
-  const text = (tasks: WorkedRowInput["tasks"]) => JSON.stringify(tasks.map((task) => [task.taskId, task.durationMin, task.wornPct, task.wornIsShiftWide]));
-  const unaccounted = one.unaccounted.how === "quiet" ? one.unaccounted.levelDb : null;
-  return one.localStart === saved.localStart && one.lengthMin === saved.lengthMin && one.unaccounted.how === saved.how
-    && unaccounted === saved.quietDb && (one.note ?? "") === (saved.note ?? "") && text(one.tasks) === text(saved.tasks);
-}
-
-async function storeReading(actor: Actor, siteId: string, date: string, one: WorkedRowInput, shiftId: string | null, entryId: string): Promise<void> {
+async function storeReading(
+  actor: Actor,
+  siteId: string,
+  date: string,
+  one: WorkedRowInput,
+  shiftId: string | null,
+  entryId: string,
+): Promise<void> {
   if (!one.reading) return;
   const { instrumentId, runId, runRevision, durationMin, covers, ...facts } = one.reading;
-  const run = { durationMin, covers, checkBeforeDb: null, checkAfterDb: null, keptReason: null, unusual: null, readings: [facts] };
+  const run = {
+    durationMin,
+    covers,
+    checkBeforeDb: null,
+    checkAfterDb: null,
+    keptReason: null,
+    unusual: null,
+    readings: [facts],
+  };
   if (runId === null) {
-    await recordRun(actor, siteId, { ...run, instrumentId, workerId: one.workerId, date, shiftId }, entryId);
+    await recordRun(
+      actor,
+      siteId,
+      { ...run, instrumentId, workerId: one.workerId, date, shiftId },
+      entryId,
+    );
     return;
   }
   const existing = await Run.findOne({ where: { id: runId, workerId: one.workerId }, lock: true });
   if (!existing) throw new AppError("not-found", 404);
   if (existing.revision !== runRevision) throw new AppError("stale", 412);
-  const kept = await row<{ checkBeforeDb: number | null; checkAfterDb: number | null; keptReason: string | null; unusual: string | null }>(
+  const kept = await row<{
+    checkBeforeDb: number | null;
+    checkAfterDb: number | null;
+    keptReason: string | null;
+    unusual: string | null;
+  }>(
     `SELECT check_before_db AS "checkBeforeDb", check_after_db AS "checkAfterDb", kept_reason AS "keptReason", unusual FROM run_revisions WHERE id = :id`,
     { id: existing.currentRevisionId },
   );
-  await correctRun(actor, existing, { ...run, ...kept, reason: one.reason ?? "corrected in the day's entry", isVoid: false }, entryId);
+  await correctRun(
+    actor,
+    existing,
+    { ...run, ...kept, reason: one.reason ?? "corrected in the day's entry", isVoid: false },
+    entryId,
+  );
 }
 
 async function storeAbsences(
-  actor: Actor, crew: Crew, date: string, absences: readonly { index: number; workerId: string; isAbsent: boolean }[],
-  members: Map<string, Member>, nearby: readonly SavedShiftRow[], refused: DaySaveView["refused"],
+  actor: Actor,
+  crew: Crew,
+  date: string,
+  absences: readonly { index: number; workerId: string; isAbsent: boolean }[],
+  members: Map<string, Member>,
+  nearby: readonly SavedShiftRow[],
+  refused: DaySaveView["refused"],
 ): Promise<{ index: number; workerId: string }[]> {
   const stored = absences.filter(({ index, workerId, isAbsent }) => {
     const issues: ProblemIssue[] = [];
     if (!members.get(workerId)?.isMember) issues.push(issue(["workerId"], "not-in-crew"));
-    if (isAbsent && nearby.some((shift) => shift.workerId === workerId && shift.date === date)) issues.push(issue(["kind"], "worked-that-day"));
+    if (isAbsent && nearby.some((shift) => shift.workerId === workerId && shift.date === date))
+      issues.push(issue(["kind"], "worked-that-day"));
     if (issues.length > 0) refused.push({ index, workerId, issues });
     return issues.length === 0;
   });
-  const ids = (isAbsent: boolean) => stored.filter((one) => one.isAbsent === isAbsent).map(({ workerId }) => workerId);
+  const ids = (isAbsent: boolean) =>
+    stored.filter((one) => one.isAbsent === isAbsent).map(({ workerId }) => workerId);
   await execute(
     `INSERT INTO absences (organization_id, worker_id, date, crew_id, recorded_by) SELECT $1, unnest($2::uuid[]), $3::date, $4, $5 ON CONFLICT DO NOTHING`,
     [actor.organizationId, ids(true), date, crew.id, actor.userId],
   );
-  await execute("DELETE FROM absences WHERE worker_id = ANY ($1::uuid[]) AND date = $2::date", [ids(false), date]);
-  await recordAuditMany(actor, stored.map(({ workerId, isAbsent }) => ({
-    action: isAbsent ? "record-absence" : "withdraw-absence", subjectKind: "worker", subjectId: workerId, values: { date },
-  })));
+  await execute("DELETE FROM absences WHERE worker_id = ANY ($1::uuid[]) AND date = $2::date", [
+    ids(false),
+    date,
+  ]);
+  await recordAuditMany(
+    actor,
+    stored.map(({ workerId, isAbsent }) => ({
+      action: isAbsent ? "record-absence" : "withdraw-absence",
+      subjectKind: "worker",
+      subjectId: workerId,
+      values: { date },
+    })),
+  );
   return stored;
 }

@@ -28,7 +28,13 @@ interface Scheduling {
  * nothing leaves. One notice per person and entry. What was told already and is now another result is told anew, as
  * replacing the earlier; what was not told yet and is gone is withdrawn.
  */
-export async function scheduleNotices({ organizationId, author, entryId, siteId, recomputed }: Scheduling): Promise<void> {
+export async function scheduleNotices({
+  organizationId,
+  author,
+  entryId,
+  siteId,
+  recomputed,
+}: Scheduling): Promise<void> {
   const site = await row<{ delayMin: number; timeZone: string }>(
     `SELECT notice_delay_min AS "delayMin", time_zone AS "timeZone" FROM sites WHERE id = :siteId`,
     { siteId },
@@ -38,18 +44,32 @@ export async function scheduleNotices({ organizationId, author, entryId, siteId,
   const oldest = addDays(localDate(new Date(), site.timeZone), -NEWS_FOR_DAYS);
   await withdrawUnsent(recomputed);
   await replaceSent({ organizationId, entryId, notBefore, recomputed });
-  const news = recomputed.opened.filter(({ kind, date }) => NOTIFIED_KINDS.has(kind) && date >= oldest);
+  const news = recomputed.opened.filter(
+    ({ kind, date }) => NOTIFIED_KINDS.has(kind) && date >= oldest,
+  );
   if (news.length === 0) return;
 
-  const items: { recipientId: string; audience: Told["audience"]; findingId: string; workerId: string; date: string; resultId: string }[] = [];
+  const items: {
+    recipientId: string;
+    audience: Told["audience"];
+    findingId: string;
+    workerId: string;
+    date: string;
+    resultId: string;
+  }[] = [];
   const toldOf = await audiences(news, siteId, author);
   for (const { id: findingId, workerId, date, resultId } of news) {
-    for (const told of toldOf.get(`${workerId} ${date}`) ?? []) items.push({ ...told, findingId, workerId, date, resultId });
+    for (const told of toldOf.get(`${workerId} ${date}`) ?? [])
+      items.push({ ...told, findingId, workerId, date, resultId });
   }
   await writeNotices(organizationId, siteId, entryId, notBefore, items, new Map());
 }
 
-async function audiences(news: readonly { workerId: string; date: string }[], siteId: string, author: Actor | null): Promise<Map<string, Told[]>> {
+async function audiences(
+  news: readonly { workerId: string; date: string }[],
+  siteId: string,
+  author: Actor | null,
+): Promise<Map<string, Told[]>> {
   const people = await rows<Told & { workerId: string; date: string }>(
     `WITH day AS (SELECT DISTINCT x."workerId" AS worker_id, x.date FROM jsonb_to_recordset(CAST(:days AS jsonb)) AS x("workerId" uuid, date date))
      SELECT d.worker_id AS "workerId", d.date::text AS date, u.id AS "recipientId", 'supervisor' AS audience
@@ -63,7 +83,11 @@ async function audiences(news: readonly { workerId: string; date: string }[], si
      SELECT d.worker_id, d.date::text, u.id, 'officer' FROM day d
        JOIN role_grants g ON g.role = 'officer' AND g.revoked_at IS NULL AND (g.site_id IS NULL OR g.site_id = :siteId)
        JOIN users u ON u.id = g.user_id AND u.revoked_at IS NULL AND u.email IS NOT NULL AND (CAST(:authorId AS uuid) IS NULL OR u.id = :authorId)`,
-    { days: JSON.stringify(news.map(({ workerId, date }) => ({ workerId, date }))), siteId, authorId: author?.email && author.isAt(siteId, "officer") ? author.userId : null },
+    {
+      days: JSON.stringify(news.map(({ workerId, date }) => ({ workerId, date }))),
+      siteId,
+      authorId: author?.email && author.isAt(siteId, "officer") ? author.userId : null,
+    },
   );
   const byDay = new Map<string, Told[]>();
   for (const { workerId, date, recipientId, audience } of people) {
@@ -76,13 +100,26 @@ async function audiences(news: readonly { workerId: string; date: string }[], si
 type Item = Told & { findingId: string; workerId: string; date: string; resultId: string };
 
 async function writeNotices(
-  organizationId: string, siteId: string, entryId: string, notBefore: Date, items: readonly Item[], replaces: ReadonlyMap<string, string>,
+  organizationId: string,
+  siteId: string,
+  entryId: string,
+  notBefore: Date,
+  items: readonly Item[],
+  replaces: ReadonlyMap<string, string>,
 ): Promise<void> {
   const keyOf = ({ recipientId, audience }: Told) => `${recipientId} ${audience}`;
-  const notices = [...new Map(items.map((item) => [keyOf(item), item])).values()].map(({ recipientId, audience }) => {
-    const id = randomUUID();
-    return { id, recipientId, audience, messageId: `<${id}@dinward>`, replacesId: replaces.get(keyOf({ recipientId, audience })) ?? null };
-  });
+  const notices = [...new Map(items.map((item) => [keyOf(item), item])).values()].map(
+    ({ recipientId, audience }) => {
+      const id = randomUUID();
+      return {
+        id,
+        recipientId,
+        audience,
+        messageId: `<${id}@dinward>`,
+        replacesId: replaces.get(keyOf({ recipientId, audience })) ?? null,
+      };
+    },
+  );
   await execute(
     `INSERT INTO notices (id, organization_id, site_id, recipient_id, entry_id, audience, state, not_before, message_id, replaces_id)
      SELECT x.id, $1, $2, x."recipientId", $3, x.audience, 'waiting', $4, x."messageId", x."replacesId"
@@ -95,16 +132,27 @@ async function writeNotices(
     `INSERT INTO notice_items (organization_id, notice_id, finding_id, worker_id, date, result_id)
      SELECT $1, x."noticeId", x."findingId", x."workerId", x.date, x."resultId"
      FROM jsonb_to_recordset($2::jsonb) AS x("noticeId" uuid, "findingId" uuid, "workerId" uuid, date date, "resultId" uuid) ON CONFLICT DO NOTHING`,
-    [organizationId, JSON.stringify(items.map((item) => ({ ...item, noticeId: noticeOf.get(keyOf(item)) })))],
+    [
+      organizationId,
+      JSON.stringify(items.map((item) => ({ ...item, noticeId: noticeOf.get(keyOf(item)) }))),
+    ],
   );
   for (const { id } of notices) await queueNotice(organizationId, id, notBefore);
 }
 
 export const queueNotice = (organizationId: string, noticeId: string, runAt: Date) =>
-  addJob("send-notice", { organizationId, noticeId }, { key: `notice:${noticeId}`, runAt, maxAttempts: 25 });
+  addJob(
+    "send-notice",
+    { organizationId, noticeId },
+    { key: `notice:${noticeId}`, runAt, maxAttempts: 25 },
+  );
 
 const changedDays = ({ days }: Recomputation) =>
-  JSON.stringify(days.filter(({ isChanged }) => isChanged).map(({ workerId, date, resultId }) => ({ workerId, date, resultId })));
+  JSON.stringify(
+    days
+      .filter(({ isChanged }) => isChanged)
+      .map(({ workerId, date, resultId }) => ({ workerId, date, resultId })),
+  );
 
 /** Not told yet: the notice follows the new result, and one of which nothing is left is withdrawn. */
 async function withdrawUnsent(recomputed: Recomputation): Promise<void> {
@@ -128,7 +176,17 @@ async function withdrawUnsent(recomputed: Recomputation): Promise<void> {
 }
 
 /** Told already, and the result is another one now. */
-async function replaceSent({ organizationId, entryId, notBefore, recomputed }: { organizationId: string; entryId: string; notBefore: Date; recomputed: Recomputation }): Promise<void> {
+async function replaceSent({
+  organizationId,
+  entryId,
+  notBefore,
+  recomputed,
+}: {
+  organizationId: string;
+  entryId: string;
+  notBefore: Date;
+  recomputed: Recomputation;
+}): Promise<void> {
   const days = changedDays(recomputed);
   if (days === "[]") return;
   const sent = await rows<Item & { noticeId: string; siteId: string }>(
@@ -146,7 +204,9 @@ async function replaceSent({ organizationId, entryId, notBefore, recomputed }: {
   const bySite = new Map<string, typeof sent>();
   for (const item of sent) bySite.set(item.siteId, [...(bySite.get(item.siteId) ?? []), item]);
   for (const [siteId, items] of bySite) {
-    const replaces = new Map(items.map(({ recipientId, audience, noticeId }) => [`${recipientId} ${audience}`, noticeId]));
+    const replaces = new Map(
+      items.map(({ recipientId, audience, noticeId }) => [`${recipientId} ${audience}`, noticeId]),
+    );
     await writeNotices(organizationId, siteId, entryId, notBefore, items, replaces);
   }
 }

@@ -32,7 +32,11 @@ export interface CheckedShift {
  *
  * @returns shift ids in the order given
  */
-export async function storeShifts(actor: Actor, entryId: string, shifts: readonly CheckedShift[]): Promise<string[]> {
+export async function storeShifts(
+  actor: Actor,
+  entryId: string,
+  shifts: readonly CheckedShift[],
+): Promise<string[]> {
   if (shifts.length === 0) return [];
   const records = shifts.map((shift) => ({
     ...shift,
@@ -66,7 +70,9 @@ export async function storeShifts(actor: Actor, entryId: string, shifts: readonl
      FROM jsonb_to_recordset($1::jsonb) ${columns} WHERE NOT x."isNew" AND s.id = x."shiftId" AND s.revision = x.number - 1`,
     [heads],
   );
-  const tasks = records.flatMap(({ shiftId, revisionId, tasks: ofShift }) => ofShift.map((task, position) => ({ ...task, shiftId, revisionId, position })));
+  const tasks = records.flatMap(({ shiftId, revisionId, tasks: ofShift }) =>
+    ofShift.map((task, position) => ({ ...task, shiftId, revisionId, position })),
+  );
   await execute(
     `INSERT INTO shift_tasks (organization_id, shift_id, shift_revision_id, position, task_id, duration_min, worn_pct, worn_is_shift_wide)
      SELECT $1, x."shiftId", x."revisionId", x.position, x."taskId", x."durationMin", x."wornPct", x."wornIsShiftWide"
@@ -79,11 +85,37 @@ export async function storeShifts(actor: Actor, entryId: string, shifts: readonl
      ON CONFLICT (worker_id, date) DO UPDATE SET is_stale = TRUE`,
     [actor.organizationId, heads],
   );
-  await recordAuditMany(actor, records.map(({ isNew, shiftId, number, workerId, date, localStart, lengthMin, unaccounted, tasks: ofShift, reason, isVoid }) => ({
-    action: isVoid ? "void-shift" : isNew ? "record-shift" : "correct-shift",
-    subjectKind: "shift",
-    subjectId: shiftId,
-    values: { number, workerId, date, localStart, lengthMin, unaccounted, tasks: ofShift, reason },
-  })));
+  await recordAuditMany(
+    actor,
+    records.map(
+      ({
+        isNew,
+        shiftId,
+        number,
+        workerId,
+        date,
+        localStart,
+        lengthMin,
+        unaccounted,
+        tasks: ofShift,
+        reason,
+        isVoid,
+      }) => ({
+        action: isVoid ? "void-shift" : isNew ? "record-shift" : "correct-shift",
+        subjectKind: "shift",
+        subjectId: shiftId,
+        values: {
+          number,
+          workerId,
+          date,
+          localStart,
+          lengthMin,
+          unaccounted,
+          tasks: ofShift,
+          reason,
+        },
+      }),
+    ),
+  );
   return records.map(({ shiftId }) => shiftId);
 }

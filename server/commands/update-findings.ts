@@ -42,16 +42,27 @@ interface FindingRow {
 }
 
 /** Kinds for which a protector of the register may be the answer. */
-const mendable = new Set<FindingKind>(["over-limit-at-ear", "protects-too-little", "protects-too-much", "no-protector", "dual-protection"]);
+const mendable = new Set<FindingKind>([
+  "over-limit-at-ear",
+  "protects-too-little",
+  "protects-too-much",
+  "no-protector",
+  "dual-protection",
+]);
 
-const causeKey = (subject: string, { kind, criterion, useKey }: Pick<Cause, "kind" | "criterion" | "useKey">) =>
-  [subject, kind, criterion, useKey].join("|");
+const causeKey = (
+  subject: string,
+  { kind, criterion, useKey }: Pick<Cause, "kind" | "criterion" | "useKey">,
+) => [subject, kind, criterion, useKey].join("|");
 
 /**
  * Holds the findings to what the days show now. A cause has one open finding, to which further days attach; a closed one
  * comes back only for a day dated after its closing; a day that was corrected away takes its evidence with it.
  */
-export async function updateFindings(organizationId: string, days: readonly DayCauses[]): Promise<OpenedFinding[]> {
+export async function updateFindings(
+  organizationId: string,
+  days: readonly DayCauses[],
+): Promise<OpenedFinding[]> {
   const workerIds = [...new Set(days.map(({ workerId }) => workerId))];
   const jobIds = [...new Set(days.flatMap(({ jobId }) => (jobId ? [jobId] : [])))];
   await withdrawEvidence(organizationId, days);
@@ -66,7 +77,9 @@ export async function updateFindings(organizationId: string, days: readonly DayC
      ORDER BY f.worker_id, f.job_id, f.kind, f.criterion, f.use_key, (f.state <> 'closed') DESC, f.opened_at DESC`,
     { organizationId, workerIds: `{${workerIds.join(",")}}`, jobIds: `{${jobIds.join(",")}}` },
   );
-  const byCause = new Map(known.map((row) => [causeKey((row.jobId ?? row.workerId) as string, row), row]));
+  const byCause = new Map(
+    known.map((row) => [causeKey((row.jobId ?? row.workerId) as string, row), row]),
+  );
 
   const opened: OpenedFinding[] = [];
   const evidence: Evidence[] = [];
@@ -87,12 +100,46 @@ export async function updateFindings(organizationId: string, days: readonly DayC
         const id = randomUUID();
         const state: FindingState = closed ? "came-back" : "new";
         const owner = { workerId: ofJob ? null : day.workerId, jobId: ofJob ? day.jobId : null };
-        fresh.push({ id, siteId: day.siteId, ...owner, kind, criterion, useKey, state, date: day.date, resultId: day.resultId, dueIn: dueInDays(kind), previousId: closed?.id ?? null });
-        opened.push({ id, kind, workerId: day.workerId, siteId: day.siteId, date: day.date, resultId: day.resultId });
-        finding = { id, ...owner, kind, criterion, useKey, state, lastDate: day.date, closedOn: null, wasWithdrawn: false };
+        fresh.push({
+          id,
+          siteId: day.siteId,
+          ...owner,
+          kind,
+          criterion,
+          useKey,
+          state,
+          date: day.date,
+          resultId: day.resultId,
+          dueIn: dueInDays(kind),
+          previousId: closed?.id ?? null,
+        });
+        opened.push({
+          id,
+          kind,
+          workerId: day.workerId,
+          siteId: day.siteId,
+          date: day.date,
+          resultId: day.resultId,
+        });
+        finding = {
+          id,
+          ...owner,
+          kind,
+          criterion,
+          useKey,
+          state,
+          lastDate: day.date,
+          closedOn: null,
+          wasWithdrawn: false,
+        };
         byCause.set(key, finding);
       }
-      evidence.push({ findingId: finding.id, workerId: day.workerId, date: day.date, resultId: day.resultId });
+      evidence.push({
+        findingId: finding.id,
+        workerId: day.workerId,
+        date: day.date,
+        resultId: day.resultId,
+      });
       if (day.date >= finding.lastDate) {
         finding.lastDate = day.date;
         latest.set(finding.id, { day, cause });
@@ -103,7 +150,8 @@ export async function updateFindings(organizationId: string, days: readonly DayC
   await attachEvidence(organizationId, evidence);
   const register = new Map<string, ProtectorData[]>();
   const facts: { findingId: string; facts: Record<string, unknown> }[] = [];
-  for (const [findingId, { day, cause }] of latest) facts.push({ findingId, facts: await factsOf(day, cause, register) });
+  for (const [findingId, { day, cause }] of latest)
+    facts.push({ findingId, facts: await factsOf(day, cause, register) });
   await settleFindings([...new Set(evidence.map(({ findingId }) => findingId))], facts);
   return opened;
 }
@@ -130,7 +178,11 @@ interface NewFinding {
   previousId: string | null;
 }
 
-async function factsOf(day: DayCauses, cause: Cause, register: Map<string, ProtectorData[]>): Promise<Record<string, unknown>> {
+async function factsOf(
+  day: DayCauses,
+  cause: Cause,
+  register: Map<string, ProtectorData[]>,
+): Promise<Record<string, unknown>> {
   if (!mendable.has(cause.kind) || !day.input || !day.governing) return { ...cause.facts };
   const models = register.get(day.date) ?? (await registerOn(day.date));
   register.set(day.date, models);
@@ -155,11 +207,19 @@ async function insertFindings(organizationId: string, fresh: readonly NewFinding
   );
   await recordAuditMany(
     { organizationId },
-    fresh.map(({ id, kind, criterion, date }) => ({ action: "open-finding", subjectKind: "finding", subjectId: id, values: { kind, criterion, date } })),
+    fresh.map(({ id, kind, criterion, date }) => ({
+      action: "open-finding",
+      subjectKind: "finding",
+      subjectId: id,
+      values: { kind, criterion, date },
+    })),
   );
 }
 
-async function attachEvidence(organizationId: string, evidence: readonly Evidence[]): Promise<void> {
+async function attachEvidence(
+  organizationId: string,
+  evidence: readonly Evidence[],
+): Promise<void> {
   await execute(
     `INSERT INTO finding_evidence (organization_id, finding_id, worker_id, date, result_id)
      SELECT $1, x."findingId", x."workerId", x.date, x."resultId"
@@ -170,7 +230,10 @@ async function attachEvidence(organizationId: string, evidence: readonly Evidenc
 }
 
 /** Brings counts and dates in line with the evidence, and the facts with those of the latest day. */
-async function settleFindings(findingIds: readonly string[], facts: readonly { findingId: string; facts: Record<string, unknown> }[]): Promise<void> {
+async function settleFindings(
+  findingIds: readonly string[],
+  facts: readonly { findingId: string; facts: Record<string, unknown> }[],
+): Promise<void> {
   if (findingIds.length === 0) return;
   await execute(
     `UPDATE findings f SET days_count = e.count, first_date = e.first, last_date = e.last, last_result_id = e.result, facts = coalesce(x.facts, f.facts)
@@ -184,7 +247,16 @@ async function settleFindings(findingIds: readonly string[], facts: readonly { f
 
 /** When somebody has to have acted. Common practice, no source. */
 function dueInDays(kind: FindingKind): number {
-  if (["over-limit-at-ear", "no-protector", "protects-too-little", "dual-protection", "peak-or-ceiling"].includes(kind)) return 1;
+  if (
+    [
+      "over-limit-at-ear",
+      "no-protector",
+      "protects-too-little",
+      "dual-protection",
+      "peak-or-ceiling",
+    ].includes(kind)
+  )
+    return 1;
   if (["not-worn-long-enough", "wearing-unknown", "time-not-accounted"].includes(kind)) return 3;
   return 14;
 }
@@ -208,8 +280,12 @@ async function withdrawEvidence(organizationId: string, days: readonly DayCauses
     { days: JSON.stringify(days.map(({ workerId, date }) => ({ workerId, date }))) },
   );
   const causesOf = new Map(days.map((day) => [`${day.workerId} ${day.date}`, day.causes]));
-  const gone = attached.filter(({ workerId, date, kind, criterion, useKey }) =>
-    !(causesOf.get(`${workerId} ${date}`) ?? []).some((cause) => cause.kind === kind && cause.criterion === criterion && cause.useKey === useKey));
+  const gone = attached.filter(
+    ({ workerId, date, kind, criterion, useKey }) =>
+      !(causesOf.get(`${workerId} ${date}`) ?? []).some(
+        (cause) => cause.kind === kind && cause.criterion === criterion && cause.useKey === useKey,
+      ),
+  );
   if (gone.length === 0) return;
   await execute(
     `DELETE FROM finding_evidence e USING jsonb_to_recordset($1::jsonb) AS x("findingId" uuid, "workerId" uuid, date date)
@@ -223,7 +299,9 @@ async function withdrawEvidence(organizationId: string, days: readonly DayCauses
   );
   const hasEvidence = new Set(left.map(({ findingId }) => findingId));
   await settleFindings([...hasEvidence], []);
-  for (const { findingId, date, state } of touched.filter((one) => !hasEvidence.has(one.findingId))) {
+  for (const { findingId, date, state } of touched.filter(
+    (one) => !hasEvidence.has(one.findingId),
+  )) {
     // Nobody has taken it up and nothing of it is left: a typing error that was caught.
     const closes = state === "new" || state === "came-back";
     await execute(
@@ -234,7 +312,18 @@ async function withdrawEvidence(organizationId: string, days: readonly DayCauses
       await execute("UPDATE findings SET days_count = 0 WHERE id = $1", [findingId]);
       continue;
     }
-    await execute("UPDATE findings SET state = 'closed', closed_on = $2, closing_reason = 'evidence-gone', revision = revision + 1 WHERE id = $1", [findingId, date]);
-    await recordAudit({ organizationId }, { action: "withdraw-finding", subjectKind: "finding", subjectId: findingId, values: { date } });
+    await execute(
+      "UPDATE findings SET state = 'closed', closed_on = $2, closing_reason = 'evidence-gone', revision = revision + 1 WHERE id = $1",
+      [findingId, date],
+    );
+    await recordAudit(
+      { organizationId },
+      {
+        action: "withdraw-finding",
+        subjectKind: "finding",
+        subjectId: findingId,
+        values: { date },
+      },
+    );
   }
 }

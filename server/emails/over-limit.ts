@@ -1,9 +1,9 @@
 import type { I18n } from "@lingui/core";
-import type { FindingKind } from "../../shared/schemas/finding";
+import { findingWord } from "../../shared/findings/words";
 import { formatDay } from "../../shared/format/date";
 import { formatLevelWithUnit, formatWholeLevel } from "../../shared/format/level";
 import type { Locale } from "../../shared/i18n";
-import { findingWord } from "../../shared/findings/words";
+import type { FindingKind } from "../../shared/schemas/finding";
 
 export interface NoticeFacts {
   audience: "officer" | "supervisor" | "worker";
@@ -35,11 +35,16 @@ const escapeHtml = (text: string) => text.replace(/[&<>"']/g, (mark) => `&#${mar
 
 /** Subject, text and HTML from one set of facts. The subject holds no level and no medical word: it shows on lock screens. */
 export function overLimitMail(i18n: I18n, locale: Locale, facts: NoticeFacts): Mail {
-  const lines = facts.audience === "worker" ? workerLines(i18n, locale, facts) : crewLines(i18n, locale, facts);
+  const lines =
+    facts.audience === "worker" ? workerLines(i18n, locale, facts) : crewLines(i18n, locale, facts);
   const greeting = i18n.t("Hello {name},", { name: facts.recipientName });
-  const replaces = facts.replaces ? i18n.t("This replaces what we wrote before: the record was corrected.") : null;
+  const replaces = facts.replaces
+    ? i18n.t("This replaces what we wrote before: the record was corrected.")
+    : null;
   const open = i18n.t("Open in Dinward: {link}", { link: facts.link });
-  const foot = i18n.t("An aid to screening. Local regulation, a qualified hygienist and a licensed audiologist decide.");
+  const foot = i18n.t(
+    "An aid to screening. Local regulation, a qualified hygienist and a licensed audiologist decide.",
+  );
   const from = `${facts.organizationName}, ${facts.siteName}`;
   const paragraphs = [greeting, replaces, ...lines].filter((line) => line !== null);
   const subject = subjectOf(i18n, locale, facts);
@@ -57,7 +62,8 @@ ${paragraphs.map((paragraph) => `<p>${escapeHtml(paragraph).replaceAll("\n", "<b
 }
 
 function subjectOf(i18n: I18n, locale: Locale, { audience, items }: NoticeFacts): string {
-  if (audience === "worker") return i18n.t("About your shift on {day}", { day: formatDay(items[0]?.date ?? "", locale) });
+  if (audience === "worker")
+    return i18n.t("About your shift on {day}", { day: formatDay(items[0]?.date ?? "", locale) });
   const workers = new Set(items.map(({ employeeNumber }) => employeeNumber)).size;
   return i18n.t("{workers, plural, one {One person} other {# people}} to look after", { workers });
 }
@@ -69,27 +75,46 @@ function workerLines(i18n: I18n, locale: Locale, { items }: NoticeFacts): string
     const said = !isStillOver
       ? i18n.t("On {day} you were not over the limit after all.", { day })
       : kinds.includes("no-protector")
-        ? i18n.t("On {day} you worked in loud noise and no hearing protector is assigned to you.", { day })
+        ? i18n.t("On {day} you worked in loud noise and no hearing protector is assigned to you.", {
+            day,
+          })
         : atEarDb !== null
-          ? i18n.t("On {day} about {level} decibels reached your ear. That is more than is allowed.", { day, level })
+          ? i18n.t(
+              "On {day} about {level} decibels reached your ear. That is more than is allowed.",
+              { day, level },
+            )
           : i18n.t("On {day} the noise around you was more than is allowed.", { day });
     const todo = !isStillOver
       ? i18n.t("You need not do anything.")
       : remedyNames.length > 0
-        ? i18n.t("Please ask your supervisor for {protector} before you work in noise again.", { protector: remedyNames.join(" + ") })
+        ? i18n.t("Please ask your supervisor for {protector} before you work in noise again.", {
+            protector: remedyNames.join(" + "),
+          })
         : i18n.t("Please talk to your supervisor before you work in noise again.");
     return [said, todo];
   });
 }
 
 function crewLines(i18n: I18n, locale: Locale, { items }: NoticeFacts): string[] {
-  return items.map(({ workerName, employeeNumber, date, kinds, atEarDb, outsideDb, remedyNames, isStillOver }) => {
-    const head = i18n.t("{name}, {number}, on {day}:", { name: workerName, number: employeeNumber, day: formatDay(date, locale) });
-    const what = isStillOver ? kinds.map((kind) => findingWord(i18n, kind)).join(", ") : i18n.t("no longer over after the correction");
-    const figures = i18n.t("at the ear {atEar}, without protection {outside}", {
-      atEar: formatLevelWithUnit(atEarDb, locale), outside: formatLevelWithUnit(outsideDb, locale),
-    });
-    const todo = isStillOver && remedyNames.length > 0 ? i18n.t("Give {protector}.", { protector: remedyNames.join(" + ") }) : "";
-    return [`${head} ${what}`, figures, todo].filter(Boolean).join("\n");
-  });
+  return items.map(
+    ({ workerName, employeeNumber, date, kinds, atEarDb, outsideDb, remedyNames, isStillOver }) => {
+      const head = i18n.t("{name}, {number}, on {day}:", {
+        name: workerName,
+        number: employeeNumber,
+        day: formatDay(date, locale),
+      });
+      const what = isStillOver
+        ? kinds.map((kind) => findingWord(i18n, kind)).join(", ")
+        : i18n.t("no longer over after the correction");
+      const figures = i18n.t("at the ear {atEar}, without protection {outside}", {
+        atEar: formatLevelWithUnit(atEarDb, locale),
+        outside: formatLevelWithUnit(outsideDb, locale),
+      });
+      const todo =
+        isStillOver && remedyNames.length > 0
+          ? i18n.t("Give {protector}.", { protector: remedyNames.join(" + ") })
+          : "";
+      return [`${head} ${what}`, figures, todo].filter(Boolean).join("\n");
+    },
+  );
 }

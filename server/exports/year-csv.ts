@@ -17,7 +17,8 @@ const uuid = /^[0-9a-f]{8}(-[0-9a-f]{4}){3}-[0-9a-f]{12}$/;
 
 /** The records of a year, as far as the actor may see them. COPY takes no parameters, so the values stand in the text. */
 export function yearQuery(actor: Actor, { siteId, year, workers }: YearExport): string {
-  if (!uuid.test(siteId) || !Number.isInteger(year)) throw new RangeError("a site's id and a whole year");
+  if (!uuid.test(siteId) || !Number.isInteger(year))
+    throw new RangeError("a site's id and a whole year");
   const columns = YEAR_COLUMNS.map(({ name, sql, type }) => {
     const expression = name === "worker" && workers === "name" ? "w.name" : sql;
     return `${type === "text" ? `csv_text(${expression})` : expression} AS ${name}`;
@@ -34,7 +35,8 @@ ORDER BY d.date, w.employee_number`;
 }
 
 /** The last record has as many fields as the others, so that a strict reader takes it. */
-const trailerLine = (rows: number) => `${TRAILER},${rows}${",".repeat(YEAR_COLUMNS.length - 2)}\r\n`;
+const trailerLine = (rows: number) =>
+  `${TRAILER},${rows}${",".repeat(YEAR_COLUMNS.length - 2)}\r\n`;
 
 /**
  * Passes the database's own COPY through to the response, under the application's role and row security. The last
@@ -43,9 +45,20 @@ const trailerLine = (rows: number) => `${TRAILER},${rows}${",".repeat(YEAR_COLUM
  *
  * @returns how many days were written
  */
-export async function streamYear(databaseUrl: string, actor: Actor, what: YearExport, response: Response): Promise<number> {
-  const client = new pg.Client({ connectionString: databaseUrl, application_name: "dinward export" });
-  const leave = () => (client as unknown as { connection: { stream: { destroy(): void } } }).connection.stream.destroy();
+export async function streamYear(
+  databaseUrl: string,
+  actor: Actor,
+  what: YearExport,
+  response: Response,
+): Promise<number> {
+  const client = new pg.Client({
+    connectionString: databaseUrl,
+    application_name: "dinward export",
+  });
+  const leave = () =>
+    (
+      client as unknown as { connection: { stream: { destroy(): void } } }
+    ).connection.stream.destroy();
   // An error of the connection also fails the stream, which is where it is dealt with.
   client.on("error", () => undefined);
   await client.connect();
@@ -58,11 +71,16 @@ export async function streamYear(databaseUrl: string, actor: Actor, what: YearEx
          set_config('statement_timeout', '30min', true), set_config('extra_float_digits', '1', true)`,
       [actor.organizationId],
     );
-    const records = client.query(copyTo(`COPY (${yearQuery(actor, what)}) TO STDOUT WITH (FORMAT csv, HEADER true, ENCODING 'UTF8')`));
+    const records = client.query(
+      copyTo(
+        `COPY (${yearQuery(actor, what)}) TO STDOUT WITH (FORMAT csv, HEADER true, ENCODING 'UTF8')`,
+      ),
+    );
     const ends = new RecordEnds();
     await pipeline(records, ends, response, { end: false });
     await client.query("COMMIT");
-    if (records.rowCount !== ends.count - 1) throw new Error("the database wrote another number of rows than arrived");
+    if (records.rowCount !== ends.count - 1)
+      throw new Error("the database wrote another number of rows than arrived");
     response.end(trailerLine(records.rowCount));
     return records.rowCount;
   } catch (error) {

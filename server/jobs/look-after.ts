@@ -15,10 +15,15 @@ export async function lookAfter(): Promise<void> {
            OR (state = 'possibly-sent' AND unknown_outcomes < 2 AND attempted_at < now() - interval '3 minutes')`,
       );
       for (const { id } of lost) await queueNotice(organizationId, id, new Date());
-      const [stale] = await rows<{ count: number }>("SELECT count(*)::int AS count FROM (SELECT 1 FROM days WHERE is_stale LIMIT 1) d");
+      const [stale] = await rows<{ count: number }>(
+        "SELECT count(*)::int AS count FROM (SELECT 1 FROM days WHERE is_stale LIMIT 1) d",
+      );
       if (stale && stale.count > 0) await queueRecompute(organizationId);
       await execute("DELETE FROM idempotency_keys WHERE created_at < now() - interval '30 days'");
     });
   }
-  await sequelize().query("DELETE FROM sessions WHERE expire < now(); DELETE FROM rate_limits WHERE resets_at < now()", { transaction: null });
+  await sequelize().query(
+    "DELETE FROM sessions WHERE expire < now(); DELETE FROM rate_limits WHERE resets_at < now()",
+    { transaction: null },
+  );
 }

@@ -20,7 +20,10 @@ interface StaleDay {
  *
  * @returns how many days were computed
  */
-export async function recomputeStaleDays(organizationId: string, shouldStop: () => boolean = () => false): Promise<number> {
+export async function recomputeStaleDays(
+  organizationId: string,
+  shouldStop: () => boolean = () => false,
+): Promise<number> {
   let done = 0;
   for (let step = 0; step < STEPS_A_JOB && !shouldStop(); step += 1) {
     const count = await inTransaction({ organizationId }, async () => {
@@ -29,11 +32,17 @@ export async function recomputeStaleDays(organizationId: string, shouldStop: () 
       );
       if (days.length === 0) return 0;
       const recomputed = await recomputeDays(organizationId, days);
-      const siteOf = new Map(days.map(({ workerId, date, siteId }) => [`${workerId} ${date}`, siteId]));
+      const siteOf = new Map(
+        days.map(({ workerId, date, siteId }) => [`${workerId} ${date}`, siteId]),
+      );
       for (const siteId of new Set(siteOf.values())) {
-        const ofSite = <T extends { workerId: string; date: string }>(all: T[]) => all.filter(({ workerId, date }) => siteOf.get(`${workerId} ${date}`) === siteId);
+        const ofSite = <T extends { workerId: string; date: string }>(all: T[]) =>
+          all.filter(({ workerId, date }) => siteOf.get(`${workerId} ${date}`) === siteId);
         await scheduleNotices({
-          organizationId, author: null, entryId: randomUUID(), siteId,
+          organizationId,
+          author: null,
+          entryId: randomUUID(),
+          siteId,
           recomputed: { days: ofSite(recomputed.days), opened: ofSite(recomputed.opened) },
         });
       }

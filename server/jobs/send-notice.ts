@@ -1,6 +1,6 @@
-import type { FindingKind } from "../../shared/schemas/finding";
 import { createI18n, isLocale } from "../../shared/i18n";
-import { overLimitMail, type Mail, type NoticeFacts } from "../emails/over-limit";
+import type { FindingKind } from "../../shared/schemas/finding";
+import { type Mail, type NoticeFacts, overLimitMail } from "../emails/over-limit";
 import { recordAudit } from "../lib/audit";
 import { execute, inTransaction, row, rows } from "../lib/db";
 import type { JobPayloads } from "../lib/jobs";
@@ -30,14 +30,33 @@ interface NoticeRow {
  *
  * @throws Error where the server refused for now: the queue tries again later.
  */
-export async function sendNotice({ organizationId, noticeId }: JobPayloads["send-notice"], mailer: Mailer, publicUrl: string): Promise<void> {
+export async function sendNotice(
+  { organizationId, noticeId }: JobPayloads["send-notice"],
+  mailer: Mailer,
+  publicUrl: string,
+): Promise<void> {
   const claimed = await inTransaction({ organizationId }, () => claim(noticeId, publicUrl));
   if (!claimed) return;
-  const outcome = await mailer.send({ to: claimed.to, messageId: claimed.messageId, ...claimed.mail });
+  const outcome = await mailer.send({
+    to: claimed.to,
+    messageId: claimed.messageId,
+    ...claimed.mail,
+  });
   await inTransaction({ organizationId }, async () => {
     if (outcome.kind === "sent") {
-      await execute("UPDATE notices SET state = 'sent', sent_at = now(), last_error = NULL, revision = revision + 1 WHERE id = $1", [noticeId]);
-      await recordAudit({ organizationId }, { action: "send-notice", subjectKind: "notice", subjectId: noticeId, values: { messageId: claimed.messageId } });
+      await execute(
+        "UPDATE notices SET state = 'sent', sent_at = now(), last_error = NULL, revision = revision + 1 WHERE id = $1",
+        [noticeId],
+      );
+      await recordAudit(
+        { organizationId },
+        {
+          action: "send-notice",
+          subjectKind: "notice",
+          subjectId: noticeId,
+          values: { messageId: claimed.messageId },
+        },
+      );
       return;
     }
     const state = { later: "waiting", never: "failed", unknown: "possibly-sent" }[outcome.kind];
@@ -63,17 +82,26 @@ async function claim(noticeId: string, publicUrl: string): Promise<Claimed | nul
   if (!notice || !["waiting", "sending", "possibly-sent"].includes(notice.state)) return null;
   if (notice.state === "waiting" && !notice.isDue) return null;
   if (!notice.email) {
-    await execute("UPDATE notices SET state = 'failed', last_error = 'no address', revision = revision + 1 WHERE id = $1", [noticeId]);
+    await execute(
+      "UPDATE notices SET state = 'failed', last_error = 'no address', revision = revision + 1 WHERE id = $1",
+      [noticeId],
+    );
     return null;
   }
   // Found as "sending": an attempt was cut off, and whether the server took it nobody knows.
   const unknown = notice.unknownOutcomes + (notice.state === "sending" ? 1 : 0);
   if (unknown > 1) {
-    await execute("UPDATE notices SET state = 'possibly-sent', unknown_outcomes = $2 WHERE id = $1", [noticeId, unknown]);
+    await execute(
+      "UPDATE notices SET state = 'possibly-sent', unknown_outcomes = $2 WHERE id = $1",
+      [noticeId, unknown],
+    );
     return null;
   }
   // A second attempt says word for word what the first said.
-  const mail = notice.subject !== null ? { subject: notice.subject, text: notice.bodyText ?? "", html: notice.bodyHtml ?? "" } : await noticeMail(noticeId, publicUrl);
+  const mail =
+    notice.subject !== null
+      ? { subject: notice.subject, text: notice.bodyText ?? "", html: notice.bodyHtml ?? "" }
+      : await noticeMail(noticeId, publicUrl);
   await execute(
     `UPDATE notices SET state = 'sending', tries = tries + 1, attempted_at = now(), unknown_outcomes = $2, subject = $3, body_text = $4, body_html = $5, revision = revision + 1 WHERE id = $1`,
     [noticeId, unknown, mail.subject, mail.text, mail.html],
@@ -98,7 +126,9 @@ export async function noticeMail(noticeId: string, publicUrl: string): Promise<M
     { noticeId },
   );
   if (!head) throw new Error("the notice is gone");
-  const items = await rows<Omit<NoticeFacts["items"][number], "remedyNames"> & { remedyNames: string[] | null }>(
+  const items = await rows<
+    Omit<NoticeFacts["items"][number], "remedyNames"> & { remedyNames: string[] | null }
+  >(
     `SELECT w.name AS "workerName", w.employee_number AS "employeeNumber", i.date::text AS date, array_agg(DISTINCT f.kind) AS kinds,
        r.at_ear_db AS "atEarDb", r.outside_db AS "outsideDb",
        bool_or(EXISTS (SELECT 1 FROM finding_evidence e WHERE e.finding_id = f.id AND e.worker_id = i.worker_id AND e.date = i.date)) AS "isStillOver",
@@ -112,7 +142,11 @@ export async function noticeMail(noticeId: string, publicUrl: string): Promise<M
   return overLimitMail(i18n, locale, {
     ...head,
     replaces: head.replacesId !== null,
-    items: items.map(({ kinds, remedyNames, ...item }) => ({ ...item, kinds: kinds as FindingKind[], remedyNames: remedyNames ?? [] })),
+    items: items.map(({ kinds, remedyNames, ...item }) => ({
+      ...item,
+      kinds: kinds as FindingKind[],
+      remedyNames: remedyNames ?? [],
+    })),
     link: `${publicUrl}/${head.audience === "worker" ? "" : head.audience === "supervisor" ? "crew-sheet" : "findings"}`,
   });
 }

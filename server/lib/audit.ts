@@ -39,14 +39,24 @@ export async function recordAudit(author: Author, event: AuditEvent): Promise<vo
 }
 
 /** The same for a change of many rows, in one statement. */
-export async function recordAuditMany(author: Author, events: readonly AuditEvent[]): Promise<void> {
+export async function recordAuditMany(
+  author: Author,
+  events: readonly AuditEvent[],
+): Promise<void> {
   const transaction = currentTransaction();
   if (events.length === 0) return;
   const records = events.map(({ action, subjectKind, subjectId, values }) => {
     const salt = randomBytes(16);
     // As it will be read back: dates and undefined members are gone.
     const recorded = JSON.parse(JSON.stringify(values));
-    return { action, subjectKind, subjectId, recorded, salt: salt.toString("hex"), digest: valuesDigest(salt, recorded).toString("hex") };
+    return {
+      action,
+      subjectKind,
+      subjectId,
+      recorded,
+      salt: salt.toString("hex"),
+      digest: valuesDigest(salt, recorded).toString("hex"),
+    };
   });
   await sequelize().query(
     `WITH given AS (
@@ -59,7 +69,12 @@ export async function recordAuditMany(author: Author, events: readonly AuditEven
      INSERT INTO audit_values (event_id, organization_id, salt, recorded)
      SELECT e.id, $1, decode(g.salt, 'hex'), g.recorded FROM event e JOIN given g ON decode(g.digest, 'hex') = e.values_digest`,
     {
-      bind: [author.organizationId, "userId" in author ? author.userId : null, currentRequestId(), JSON.stringify(records)],
+      bind: [
+        author.organizationId,
+        "userId" in author ? author.userId : null,
+        currentRequestId(),
+        JSON.stringify(records),
+      ],
       transaction,
     },
   );
@@ -77,7 +92,15 @@ interface Unsealed {
 
 /** What a seal covers of an event, in an order that never changes. */
 export function sealedText(event: Unsealed): string {
-  return [event.id, event.at, event.actorId ?? "", event.action, event.subjectKind, event.subjectId ?? "", event.digest].join("\n");
+  return [
+    event.id,
+    event.at,
+    event.actorId ?? "",
+    event.action,
+    event.subjectKind,
+    event.subjectId ?? "",
+    event.digest,
+  ].join("\n");
 }
 
 export function chainHash(previous: Buffer, event: Unsealed): Buffer {
@@ -90,7 +113,10 @@ export function chainHash(previous: Buffer, event: Unsealed): Buffer {
  */
 export async function sealEvents(organizationId: string, limit = 5000): Promise<number> {
   const transaction = currentTransaction();
-  await sequelize().query("SELECT pg_advisory_xact_lock(hashtextextended('seal:' || $1, 0))", { bind: [organizationId], transaction });
+  await sequelize().query("SELECT pg_advisory_xact_lock(hashtextextended('seal:' || $1, 0))", {
+    bind: [organizationId],
+    transaction,
+  });
   const last = await row<{ number: string; hash: Buffer }>(
     "SELECT number, hash FROM audit_seals WHERE organization_id = :organizationId ORDER BY number DESC LIMIT 1",
     { organizationId },

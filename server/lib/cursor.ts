@@ -6,11 +6,17 @@ export function encodeCursor(values: readonly (string | number | null)[]): strin
 }
 
 /** @throws AppError invalid, where the cursor is none of ours. */
-export function decodeCursor(cursor: string | undefined, length: number): (string | number | null)[] | null {
+export function decodeCursor(
+  cursor: string | undefined,
+  length: number,
+): (string | number | null)[] | null {
   if (!cursor) return null;
   try {
     const values = JSON.parse(Buffer.from(cursor, "base64url").toString("utf8"));
-    const isOurs = Array.isArray(values) && values.length === length && values.every((value) => value === null || ["string", "number"].includes(typeof value));
+    const isOurs =
+      Array.isArray(values) &&
+      values.length === length &&
+      values.every((value) => value === null || ["string", "number"].includes(typeof value));
     if (isOurs) return values;
   } catch {
     // Falls through: garbage is refused like any other bad parameter.
@@ -19,7 +25,11 @@ export function decodeCursor(cursor: string | undefined, length: number): (strin
 }
 
 /** A page from one row more than it holds. */
-export function pageFrom<Row>(found: readonly Row[], limit: number, key: (row: Row) => readonly (string | number | null)[]) {
+export function pageFrom<Row>(
+  found: readonly Row[],
+  limit: number,
+  key: (row: Row) => readonly (string | number | null)[],
+) {
   const rows = found.slice(0, limit);
   const last = rows.at(-1);
   return { rows, next: found.length > limit && last ? encodeCursor(key(last)) : null };

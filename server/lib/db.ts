@@ -11,20 +11,29 @@ const storage = new AsyncLocalStorage<Frame>();
 const namespace = {
   get: (key: string) => storage.getStore()?.values.get(key),
   set: (key: string, value: unknown) => storage.getStore()?.values.set(key, value),
-  run: (work: () => unknown) => storage.run({ values: new Map(storage.getStore()?.values ?? []) }, work),
+  run: (work: () => unknown) =>
+    storage.run({ values: new Map(storage.getStore()?.values ?? []) }, work),
   bind: <F>(work: F): F => work,
 };
+// biome-ignore lint/correctness/useHookAtTopLevel: Sequelize's name for it, no hook
 Sequelize.useCLS(namespace);
 
 let instance: Sequelize | undefined;
 
-export function connect(url: string, options: { max?: number; application?: string } = {}): Sequelize {
+export function connect(
+  url: string,
+  options: { max?: number; application?: string } = {},
+): Sequelize {
   instance = new Sequelize(url, {
     dialect: "postgres",
     logging: false,
     pool: { max: options.max ?? 10, acquire: 10_000, idle: 30_000 },
     define: { underscored: true, timestamps: false },
-    dialectOptions: { application_name: options.application ?? "dinward", statement_timeout: 120_000, lock_timeout: 15_000 },
+    dialectOptions: {
+      application_name: options.application ?? "dinward",
+      statement_timeout: 120_000,
+      lock_timeout: 15_000,
+    },
     retry: { max: 0 },
   });
   return instance;
@@ -46,17 +55,27 @@ export interface Scope {
 /**
  * One transaction whose rows are those of one organization. Every query inside joins it by itself.
  */
-export function inTransaction<T>(scope: Scope, work: (transaction: Transaction) => Promise<T>): Promise<T> {
+export function inTransaction<T>(
+  scope: Scope,
+  work: (transaction: Transaction) => Promise<T>,
+): Promise<T> {
   const isolationLevel =
-    scope.isolation === "repeatable-read" ? Transaction.ISOLATION_LEVELS.REPEATABLE_READ : undefined;
+    scope.isolation === "repeatable-read"
+      ? Transaction.ISOLATION_LEVELS.REPEATABLE_READ
+      : undefined;
   return sequelize().transaction({ isolationLevel }, async (transaction) => {
     const settings = { "app.organization": scope.organizationId ?? "", ...scope.settings };
     const entries = Object.entries(settings);
-    const calls = entries.map((_, index) => `set_config($${2 * index + 1}, $${2 * index + 2}, true)`);
-    await sequelize().query(`SELECT ${calls.join(", ")}${scope.readOnly ? ", set_config('transaction_read_only', 'on', true)" : ""}`, {
-      bind: entries.flat(),
-      transaction,
-    });
+    const calls = entries.map(
+      (_, index) => `set_config($${2 * index + 1}, $${2 * index + 2}, true)`,
+    );
+    await sequelize().query(
+      `SELECT ${calls.join(", ")}${scope.readOnly ? ", set_config('transaction_read_only', 'on', true)" : ""}`,
+      {
+        bind: entries.flat(),
+        transaction,
+      },
+    );
     return work(transaction);
   });
 }
@@ -69,7 +88,10 @@ export function currentTransaction(): Transaction {
 }
 
 /** Rows of a query, inside the present transaction. Values go in as `:name`. */
-export async function rows<Row extends object>(text: string, replacements: Record<string, unknown> = {}): Promise<Row[]> {
+export async function rows<Row extends object>(
+  text: string,
+  replacements: Record<string, unknown> = {},
+): Promise<Row[]> {
   return sequelize().query<Row>(text, {
     type: QueryTypes.SELECT,
     replacements: replacements as BindOrReplacements as Record<string, unknown>,
@@ -77,20 +99,30 @@ export async function rows<Row extends object>(text: string, replacements: Recor
   });
 }
 
-export async function row<Row extends object>(text: string, replacements: Record<string, unknown> = {}): Promise<Row | null> {
+export async function row<Row extends object>(
+  text: string,
+  replacements: Record<string, unknown> = {},
+): Promise<Row | null> {
   return (await rows<Row>(text, replacements))[0] ?? null;
 }
 
 /** A statement whose rows nobody reads; returns how many it touched. */
 export async function execute(text: string, bind: readonly unknown[] = []): Promise<number> {
-  const [, result] = await sequelize().query(text, { bind: [...bind], transaction: currentTransaction() });
+  const [, result] = await sequelize().query(text, {
+    bind: [...bind],
+    transaction: currentTransaction(),
+  });
   // Sequelize gives a count for INSERT and UPDATE, and pg's own result for everything else.
-  return typeof result === "number" ? result : ((result as { rowCount?: number } | undefined)?.rowCount ?? 0);
+  return typeof result === "number"
+    ? result
+    : ((result as { rowCount?: number } | undefined)?.rowCount ?? 0);
 }
 
 /** Every organization's id, for work that recurs. */
 export async function organizationIds(): Promise<string[]> {
   return inTransaction({ settings: { "app.scope": "scheduler" }, readOnly: true }, async () =>
-    (await rows<{ id: string }>("SELECT id FROM organizations ORDER BY created_at")).map(({ id }) => id),
+    (await rows<{ id: string }>("SELECT id FROM organizations ORDER BY created_at")).map(
+      ({ id }) => id,
+    ),
   );
 }

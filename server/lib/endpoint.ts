@@ -3,9 +3,10 @@ import type { NextFunction, Request, Response, Router } from "express";
 import type { z } from "zod";
 import { loadActor } from "../auth/actor";
 import { canonicalJson } from "./audit";
-import { inTransaction, row, execute } from "./db";
+import { execute, inTransaction, row } from "./db";
 import { AppError, forbidden, fromDatabase, unprocessable } from "./errors";
 import type { Actor } from "./policy";
+import { readUpload } from "./upload";
 
 type Method = "get" | "post" | "put" | "patch" | "delete";
 
@@ -13,7 +14,12 @@ type Method = "get" | "post" | "put" | "patch" | "delete";
 type Schema = z.ZodType | undefined;
 type Output<S extends Schema> = S extends z.ZodType ? z.output<S> : undefined;
 
-export interface RouteSpec<P extends Schema = Schema, Q extends Schema = Schema, B extends Schema = Schema, R extends Schema = Schema> {
+export interface RouteSpec<
+  P extends Schema = Schema,
+  Q extends Schema = Schema,
+  B extends Schema = Schema,
+  R extends Schema = Schema,
+> {
   summary: string;
   params?: P;
   query?: Q;
@@ -28,6 +34,8 @@ export interface RouteSpec<P extends Schema = Schema, Q extends Schema = Schema,
   storesNothing?: boolean;
   /** The answer is shown once and never stored: a repeated key is refused instead of answered again. */
   isReplySecret?: boolean;
+  /** A form with one file, read only once the caller may call; the body's schema gets its fields and the file's facts. */
+  upload?: { limitBytes: number };
   /** The handler writes the answer itself, outside any transaction of the request. */
   streams?: boolean;
 }
@@ -54,10 +62,17 @@ export interface Route {
 export const routes: Route[] = [];
 
 function define(method: Method) {
-  return <P extends Schema = undefined, Q extends Schema = undefined, B extends Schema = undefined, R extends Schema = undefined>(
+  return <
+    P extends Schema = undefined,
+    Q extends Schema = undefined,
+    B extends Schema = undefined,
+    R extends Schema = undefined,
+  >(
     path: string,
     spec: RouteSpec<P, Q, B, R>,
-    handler: (call: Call<P, Q, B>) => R extends z.ZodType ? Promise<z.input<R>> | z.input<R> : Promise<void> | void,
+    handler: (
+      call: Call<P, Q, B>,
+    ) => R extends z.ZodType ? Promise<z.input<R>> | z.input<R> : Promise<void> | void,
   ): void => {
     routes.push({ method, path, spec: spec as RouteSpec, handler: handler as Route["handler"] });
   };
@@ -67,11 +82,18 @@ function define(method: Method) {
  * Declares an endpoint: who may call it, what comes in, what goes out. The handler runs in the request's transaction,
  * in the caller's organization.
  */
-export const endpoint = { get: define("get"), post: define("post"), put: define("put"), patch: define("patch"), delete: define("delete") };
+export const endpoint = {
+  get: define("get"),
+  post: define("post"),
+  put: define("put"),
+  patch: define("patch"),
+  delete: define("delete"),
+};
 
 /** Where a text has what the database can't keep: a NUL, or half of a character. */
 function unreadable(value: unknown, path: (string | number)[] = []): (string | number)[] | null {
-  if (typeof value === "string") return value.includes("\0") || /\p{Surrogate}/u.test(value) ? path : null;
+  if (typeof value === "string")
+    return value.includes("\0") || /\p{Surrogate}/u.test(value) ? path : null;
   if (value === null || typeof value !== "object") return null;
   for (const [name, member] of Object.entries(value)) {
     const found = unreadable(member, [...path, Array.isArray(value) ? Number(name) : name]);
@@ -96,9 +118,14 @@ function toIssue(found: z.core.$ZodIssue) {
     if (typeof value === "string" || typeof value === "number") params[name] = value;
     else if (typeof value === "bigint") params[name] = Number(value);
   }
-  const custom = found.code === "custom" ? (found.params as { code?: string } | undefined) : undefined;
+  const custom =
+    found.code === "custom" ? (found.params as { code?: string } | undefined) : undefined;
   const { code, ...more } = { code: found.code as string, ...custom };
-  return { path: found.path as (string | number)[], code, params: { ...params, ...more } as Record<string, string | number> };
+  return {
+    path: found.path as (string | number)[],
+    code,
+    params: { ...params, ...more } as Record<string, string | number>,
+  };
 }
 
 function readIfMatch(request: Request): number {
@@ -110,11 +137,20 @@ function readIfMatch(request: Request): number {
 
 const readMethods = new Set<Method>(["get"]);
 
-async function answerOnce(route: Route, actor: Actor, request: Request, work: () => Promise<{ status: number; reply: unknown }>) {
+async function answerOnce(
+  route: Route,
+  actor: Actor,
+  request: Request,
+  work: () => Promise<{ status: number; reply: unknown }>,
+) {
   const key = request.get("idempotency-key");
   if (!key || key.length < 8 || key.length > 200) throw new AppError("key-missing", 428);
   const routeName = `${route.method} ${route.path}`;
-  const hash = createHash("sha256").update(request.originalUrl).update("\n").update(canonicalJson(request.body ?? null)).digest("hex");
+  const hash = createHash("sha256")
+    .update(request.originalUrl)
+    .update("\n")
+    .update(canonicalJson(request.body ?? null))
+    .digest("hex");
   const claimed = await execute(
     `INSERT INTO idempotency_keys (organization_id, user_id, route, key, request_hash) VALUES ($1, $2, $3, $4, $5) ON CONFLICT DO NOTHING`,
     [actor.organizationId, actor.userId, routeName, key, hash],
@@ -132,7 +168,14 @@ async function answerOnce(route: Route, actor: Actor, request: Request, work: ()
   const answer = await work();
   await execute(
     `UPDATE idempotency_keys SET status = $5, reply = $6::jsonb WHERE organization_id = $1 AND user_id = $2 AND route = $3 AND key = $4`,
-    [actor.organizationId, actor.userId, routeName, key, answer.status, JSON.stringify((route.spec.isReplySecret ? null : answer.reply) ?? null)],
+    [
+      actor.organizationId,
+      actor.userId,
+      routeName,
+      key,
+      answer.status,
+      JSON.stringify((route.spec.isReplySecret ? null : answer.reply) ?? null),
+    ],
   );
   return answer;
 }
@@ -165,21 +208,37 @@ async function handle(route: Route, request: Request, response: Response): Promi
   const { userId, organizationId, epoch = 0 } = session;
 
   if (spec.streams) {
-    const actor = await inTransaction({ organizationId, readOnly: true }, async () => loadActor(userId, epoch));
+    const actor = await inTransaction({ organizationId, readOnly: true }, async () =>
+      loadActor(userId, epoch),
+    );
     authorizeRoute(spec, actor);
     await run(actor);
     return;
   }
-  const answer = await inTransaction({ organizationId, readOnly: readMethods.has(route.method) }, async () => {
-    const actor = await loadActor(userId, epoch);
-    authorizeRoute(spec, actor);
-    const status = spec.status ?? (route.method === "post" && !spec.storesNothing ? 201 : 200);
-    const work = async () => {
-      const reply = await run(actor);
-      return { status, reply: spec.reply && reply !== undefined ? spec.reply.parse(reply) : reply };
-    };
-    return route.method === "post" && !spec.storesNothing ? answerOnce(route, actor, request, work) : work();
-  });
+  if (spec.upload) {
+    await inTransaction({ organizationId, readOnly: true }, async () =>
+      authorizeRoute(spec, await loadActor(userId, epoch)),
+    );
+    await readUpload(request, response, spec.upload.limitBytes);
+  }
+  const answer = await inTransaction(
+    { organizationId, readOnly: readMethods.has(route.method) },
+    async () => {
+      const actor = await loadActor(userId, epoch);
+      authorizeRoute(spec, actor);
+      const status = spec.status ?? (route.method === "post" && !spec.storesNothing ? 201 : 200);
+      const work = async () => {
+        const reply = await run(actor);
+        return {
+          status,
+          reply: spec.reply && reply !== undefined ? spec.reply.parse(reply) : reply,
+        };
+      };
+      return route.method === "post" && !spec.storesNothing
+        ? answerOnce(route, actor, request, work)
+        : work();
+    },
+  );
   send(response, answer.status, answer.reply);
 }
 

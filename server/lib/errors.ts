@@ -30,7 +30,8 @@ export class AppError extends Error {
 
 export const notFound = () => new AppError("not-found", 404);
 export const forbidden = () => new AppError("forbidden", 403);
-export const unprocessable = (issues: readonly ProblemIssue[]) => new AppError("invalid", 422, {}, issues);
+export const unprocessable = (issues: readonly ProblemIssue[]) =>
+  new AppError("invalid", 422, {}, issues);
 export const issue = (
   path: ProblemIssue["path"],
   code: ProblemIssue["code"],
@@ -42,7 +43,8 @@ export const stale = (current: unknown) => new AppError("stale", 412, {}, [], { 
 
 /** What a database constraint means to the person who met it. */
 const constraints: Record<string, () => AppError> = {
-  workers_employee_number: () => unprocessable([issue(["employeeNumber"], "employee-number-taken")]),
+  workers_employee_number: () =>
+    unprocessable([issue(["employeeNumber"], "employee-number-taken")]),
   shifts_overlap: () => new AppError("shifts-overlap", 409),
   assignments_overlap: () => new AppError("assignments-overlap", 409),
   crew_memberships_overlap: () => new AppError("membership-overlaps", 409),
@@ -55,7 +57,8 @@ const constraints: Record<string, () => AppError> = {
   users_worker: () => unprocessable([issue(["workerId"], "worker-has-user")]),
   role_grants_once: () => new AppError("role-granted-already", 409),
   findings_one_open: () => new AppError("finding-open-already", 409),
-  instruments_organization_id_serial_number_key: () => unprocessable([issue(["serialNumber"], "serial-number-taken")]),
+  instruments_organization_id_serial_number_key: () =>
+    unprocessable([issue(["serialNumber"], "serial-number-taken")]),
 };
 
 interface PostgresError {
@@ -66,28 +69,48 @@ interface PostgresError {
 /** Turns what the database refused into an answer; anything else stays what it is. */
 export function fromDatabase(error: unknown): unknown {
   if (!(error instanceof DatabaseError || error instanceof UniqueConstraintError)) return error;
-  const original = (error as { original?: PostgresError; parent?: PostgresError }).original
-    ?? (error as { parent?: PostgresError }).parent ?? {};
+  const original =
+    (error as { original?: PostgresError; parent?: PostgresError }).original ??
+    (error as { parent?: PostgresError }).parent ??
+    {};
   const known = original.constraint ? constraints[original.constraint] : undefined;
   if (known) return known();
   // Two saves of one revision: whoever came second saw a revision that is no longer current.
-  if (original.code === "23505" && /_(number|revision)_key$|_number_idx$/.test(original.constraint ?? "")) return new AppError("stale", 412);
+  if (
+    original.code === "23505" &&
+    /_(number|revision)_key$|_number_idx$/.test(original.constraint ?? "")
+  )
+    return new AppError("stale", 412);
   if (original.code === "23505") {
     const field = /_name_key$/.test(original.constraint ?? "") ? "name" : "";
-    return field ? unprocessable([issue([field], "name-taken")]) : new AppError("exists-already", 409);
+    return field
+      ? unprocessable([issue([field], "name-taken")])
+      : new AppError("exists-already", 409);
   }
-  if (error instanceof ForeignKeyConstraintError || original.code === "23503") return new AppError("reference-missing", 409);
+  if (error instanceof ForeignKeyConstraintError || original.code === "23503")
+    return new AppError("reference-missing", 409);
   if (original.code === "40P01" || original.code === "40001") return new AppError("try-again", 409);
   return error;
 }
 
-const unreachable = new Set(["ECONNREFUSED", "ECONNRESET", "57P01", "57P02", "57P03", "53300", "08006", "08001"]);
+const unreachable = new Set([
+  "ECONNREFUSED",
+  "ECONNRESET",
+  "57P01",
+  "57P02",
+  "57P03",
+  "53300",
+  "08006",
+  "08001",
+]);
 
 /** The database could not be reached, as opposed to refusing something. */
 export function isDatabaseDown(error: unknown): boolean {
   if (!(error instanceof Error)) return false;
   if (/^SequelizeConnection/.test(error.name)) return true;
   const original = (error as { original?: PostgresError & Error }).original;
-  return unreachable.has(original?.code ?? (error as PostgresError).code ?? "")
-    || /Connection terminated|connection is closed/i.test(original?.message ?? error.message);
+  return (
+    unreachable.has(original?.code ?? (error as PostgresError).code ?? "") ||
+    /Connection terminated|connection is closed/i.test(original?.message ?? error.message)
+  );
 }

@@ -18,12 +18,23 @@ interface JobOptions {
 }
 
 /** Adds a job in the command's own transaction: it exists if and only if the change does. */
-export async function addJob<N extends JobName>(name: N, payload: JobPayloads[N], options: JobOptions): Promise<void> {
+export async function addJob<N extends JobName>(
+  name: N,
+  payload: JobPayloads[N],
+  options: JobOptions,
+): Promise<void> {
   await sequelize().query(
     `SELECT graphile_worker.add_job($1, payload => $2::json, queue_name => $3, run_at => $4::timestamptz,
        max_attempts => $5, job_key => $6, job_key_mode => 'replace')`,
     {
-      bind: [name, JSON.stringify(payload), options.queue ?? null, (options.runAt ?? new Date()).toISOString(), options.maxAttempts ?? 25, options.key],
+      bind: [
+        name,
+        JSON.stringify(payload),
+        options.queue ?? null,
+        (options.runAt ?? new Date()).toISOString(),
+        options.maxAttempts ?? 25,
+        options.key,
+      ],
       transaction: currentTransaction(),
     },
   );

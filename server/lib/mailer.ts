@@ -10,9 +10,7 @@ export interface OutgoingMail {
 }
 
 /** What became of an attempt: taken, refused for now, refused for good, or nobody knows. */
-export type MailOutcome =
-  | { kind: "sent" }
-  | { kind: "later" | "never" | "unknown"; error: string };
+export type MailOutcome = { kind: "sent" } | { kind: "later" | "never" | "unknown"; error: string };
 
 interface SmtpError extends Error {
   code?: string;
@@ -22,14 +20,19 @@ interface SmtpError extends Error {
 export class Mailer {
   private readonly transport: Transporter;
 
-  constructor(url: string, private readonly from: string) {
+  constructor(
+    url: string,
+    private readonly from: string,
+  ) {
     const { hostname, port, username, password, protocol } = new URL(url);
     const secure = protocol === "smtps:";
     this.transport = nodemailer.createTransport({
       host: hostname,
       port: Number(port || (secure ? 465 : 587)),
       secure,
-      ...(username ? { auth: { user: decodeURIComponent(username), pass: decodeURIComponent(password) } } : {}),
+      ...(username
+        ? { auth: { user: decodeURIComponent(username), pass: decodeURIComponent(password) } }
+        : {}),
       connectionTimeout: 10_000,
       greetingTimeout: 10_000,
       socketTimeout: 20_000,
@@ -47,12 +50,19 @@ export class Mailer {
       })(),
     );
     try {
-      await this.transport.sendMail({ ...mail, text, to, from: this.from, headers: { "Auto-Submitted": "auto-generated" } });
+      await this.transport.sendMail({
+        ...mail,
+        text,
+        to,
+        from: this.from,
+        headers: { "Auto-Submitted": "auto-generated" },
+      });
       return { kind: "sent" };
     } catch (thrown) {
       const error = thrown as SmtpError;
       const said = [error.code, error.responseCode].filter(Boolean).join(" ") || error.name;
-      if (error.responseCode !== undefined) return { kind: error.responseCode >= 500 ? "never" : "later", error: said };
+      if (error.responseCode !== undefined)
+        return { kind: error.responseCode >= 500 ? "never" : "later", error: said };
       return { kind: mayHaveIt ? "unknown" : "later", error: said };
     }
   }

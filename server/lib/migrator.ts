@@ -15,8 +15,17 @@ export interface Migration {
 }
 
 const appendOnly = [
-  "site_settings", "task_levels", "protector_model_revisions", "shift_revisions", "shift_tasks", "run_revisions",
-  "readings", "day_results", "finding_steps", "audit_events", "audit_seals",
+  "site_settings",
+  "task_levels",
+  "protector_model_revisions",
+  "shift_revisions",
+  "shift_tasks",
+  "run_revisions",
+  "readings",
+  "day_results",
+  "finding_steps",
+  "audit_events",
+  "audit_seals",
 ];
 
 /** Two processes that start at once migrate one after the other. */
@@ -63,9 +72,15 @@ async function underLock<T>(db: Sequelize, work: () => Promise<T>): Promise<T> {
  * Brings the schema up, then the queue's own schema, then gives the application's role what it may do: it owns nothing
  * and can't change a record that is append-only.
  */
-export async function migrateUp(db: Sequelize, ownerUrl: string, applicationRole: string): Promise<string[]> {
+export async function migrateUp(
+  db: Sequelize,
+  ownerUrl: string,
+  applicationRole: string,
+): Promise<string[]> {
   return underLock(db, async () => {
-    await db.query("CREATE TABLE IF NOT EXISTS schema_migrations (name text PRIMARY KEY, run_at timestamptz NOT NULL DEFAULT now())");
+    await db.query(
+      "CREATE TABLE IF NOT EXISTS schema_migrations (name text PRIMARY KEY, run_at timestamptz NOT NULL DEFAULT now())",
+    );
     const done = await umzug(db).up();
     await runMigrations({ connectionString: ownerUrl });
     await grantApplication(db, applicationRole);
@@ -84,7 +99,8 @@ export async function pendingMigrations(db: Sequelize): Promise<string[]> {
 }
 
 async function grantApplication(db: Sequelize, role: string): Promise<void> {
-  if (!/^[a-z_][a-z0-9_]*$/.test(role)) throw new Error("the application's database role has an unusual name");
+  if (!/^[a-z_][a-z0-9_]*$/.test(role))
+    throw new Error("the application's database role has an unusual name");
   await db.query(`
     GRANT USAGE ON SCHEMA public, graphile_worker TO ${role};
     GRANT SELECT, INSERT, UPDATE, DELETE ON ALL TABLES IN SCHEMA public TO ${role};

@@ -5,14 +5,31 @@ import type { Route } from "./endpoint";
 type Json = Record<string, unknown>;
 
 const toJson = (schema: z.ZodType, io: "input" | "output"): Json =>
-  z.toJSONSchema(schema, { target: "draft-2020-12", io, unrepresentable: "any", reused: "inline" }) as Json;
+  z.toJSONSchema(schema, {
+    target: "draft-2020-12",
+    io,
+    unrepresentable: "any",
+    reused: "inline",
+  }) as Json;
 
 function parameters(schema: z.ZodType | undefined, where: "path" | "query"): Json[] {
   if (!schema) return [];
-  const { properties = {}, required = [] } = toJson(schema, "input") as { properties?: Record<string, Json>; required?: string[] };
+  const { properties = {}, required = [] } = toJson(schema, "input") as {
+    properties?: Record<string, Json>;
+    required?: string[];
+  };
   return Object.entries(properties).map(([name, property]) => ({
-    name, in: where, required: where === "path" || required.includes(name), schema: property,
+    name,
+    in: where,
+    required: where === "path" || required.includes(name),
+    schema: property,
   }));
+}
+
+/** A form with one file: what is said of the file in the body is the server's own. */
+function formOf(schema: z.ZodType): Json {
+  const { properties, ...form } = toJson(schema, "input") as { properties: Record<string, Json> };
+  return { ...form, properties: { ...properties, file: { type: "string", format: "binary" } } };
 }
 
 /** OpenAPI 3.1 from the very schemas that parse requests and replies. */
@@ -22,28 +39,64 @@ export function buildOpenApi(routes: readonly Route[], url: string): Json {
     const template = path.replace(/:(\w+)/g, "{$1}");
     const isCreate = method === "post" && !spec.storesNothing && spec.may !== "public";
     const headers = [
-      ...(isCreate ? [{ name: "Idempotency-Key", in: "header", required: true, schema: { type: "string", minLength: 8, maxLength: 200 } }] : []),
-      ...(spec.needsRevision ? [{ name: "If-Match", in: "header", required: true, schema: { type: "string" } }] : []),
+      ...(isCreate
+        ? [
+            {
+              name: "Idempotency-Key",
+              in: "header",
+              required: true,
+              schema: { type: "string", minLength: 8, maxLength: 200 },
+            },
+          ]
+        : []),
+      ...(spec.needsRevision
+        ? [{ name: "If-Match", in: "header", required: true, schema: { type: "string" } }]
+        : []),
     ];
     const status = String(spec.status ?? (isCreate ? 201 : 200));
     paths[template] ??= {};
     paths[template][method] = {
       summary: spec.summary,
       operationId: `${method}${template.replace(/[^a-zA-Z0-9]+(.)?/g, (_, next: string | undefined) => (next ?? "").toUpperCase())}`,
-      parameters: [...parameters(spec.params, "path"), ...parameters(spec.query, "query"), ...headers],
-      ...(spec.body ? { requestBody: { required: true, content: { "application/json": { schema: toJson(spec.body, "input") } } } } : {}),
+      parameters: [
+        ...parameters(spec.params, "path"),
+        ...parameters(spec.query, "query"),
+        ...headers,
+      ],
+      ...(spec.body
+        ? {
+            requestBody: {
+              required: true,
+              content: spec.upload
+                ? { "multipart/form-data": { schema: formOf(spec.body) } }
+                : { "application/json": { schema: toJson(spec.body, "input") } },
+            },
+          }
+        : {}),
       ...(spec.may === "public" ? { security: [] } : {}),
       responses: {
         [spec.reply ? status : "204"]: spec.reply
-          ? { description: "Done", content: { "application/json": { schema: toJson(spec.reply, "output") } } }
+          ? {
+              description: "Done",
+              content: { "application/json": { schema: toJson(spec.reply, "output") } },
+            }
           : { description: "Done" },
-        default: { description: "A problem", content: { "application/problem+json": { schema: { $ref: "#/components/schemas/Problem" } } } },
+        default: {
+          description: "A problem",
+          content: {
+            "application/problem+json": { schema: { $ref: "#/components/schemas/Problem" } },
+          },
+        },
       },
     };
   }
   return {
     openapi: "3.1.0",
-    info: { title: "Dinward", version: "1", description: "Occupational noise exposure and hearing protectors." },
+    info: {
+      title: "Dinward",
+      version: "1",
+      description: "Occupational noise exposure and hearing protectors.",
+    },
     servers: [{ url: `${url}/api` }],
     security: [{ session: [] }],
     paths,

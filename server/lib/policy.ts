@@ -27,7 +27,9 @@ export class Actor {
   }
 
   isAt(siteId: string, ...roles: Role[]): boolean {
-    return this.grants.some((grant) => roles.includes(grant.role) && (grant.siteId === null || grant.siteId === siteId));
+    return this.grants.some(
+      (grant) => roles.includes(grant.role) && (grant.siteId === null || grant.siteId === siteId),
+    );
   }
 
   /** SQL: the row's site is one for which this actor holds one of the roles; false where there is none. */
@@ -60,12 +62,19 @@ export interface Policy<Action extends string, Row> {
 }
 
 export function policy<Row>() {
-  return <Action extends string>(definition: Policy<Action, Row>): Policy<Action, Row> => definition;
+  return <Action extends string>(definition: Policy<Action, Row>): Policy<Action, Row> =>
+    definition;
 }
 
 /** SQL that is true for the rows this actor may see. No grant, no rows. */
-export function visible<A extends string, R>(of: Policy<A, R>, actor: Actor, alias: string): string {
-  const grants = of.sees(actor, alias).filter((condition): condition is string => Boolean(condition));
+export function visible<A extends string, R>(
+  of: Policy<A, R>,
+  actor: Actor,
+  alias: string,
+): string {
+  const grants = of
+    .sees(actor, alias)
+    .filter((condition): condition is string => Boolean(condition));
   return grants.length === 0 ? "FALSE" : `(${grants.map((grant) => `(${grant})`).join(" OR ")})`;
 }
 
@@ -82,20 +91,36 @@ export async function findVisible<Found extends Model, A extends string, R>(
   options: { lock?: boolean } = {},
 ): Promise<Found> {
   const condition = visible(of, actor, `"${model.name}"`);
-  const where = { id, organizationId: actor.organizationId, [Op.and]: [literal(condition)] } as WhereOptions;
+  const where = {
+    id,
+    organizationId: actor.organizationId,
+    [Op.and]: [literal(condition)],
+  } as WhereOptions;
   const found = await model.findOne({ where, lock: options.lock });
   if (!found) throw notFound();
   return found;
 }
 
 /** @throws AppError forbidden: seen, but not theirs to do. */
-export function authorize<A extends string, R>(of: Policy<A, R>, actor: Actor, action: A, row: R): void {
+export function authorize<A extends string, R>(
+  of: Policy<A, R>,
+  actor: Actor,
+  action: A,
+  row: R,
+): void {
   if (!of.can[action](actor, row)) throw forbidden();
 }
 
 /** What the actor may do with a row, sent beside its fields. */
-export function abilities<A extends string, R>(of: Policy<A, R>, actor: Actor, row: R): Record<A, boolean> {
+export function abilities<A extends string, R>(
+  of: Policy<A, R>,
+  actor: Actor,
+  row: R,
+): Record<A, boolean> {
   return Object.fromEntries(
-    Object.entries(of.can).map(([action, may]) => [action, (may as (actor: Actor, row: R) => boolean)(actor, row)]),
+    Object.entries(of.can).map(([action, may]) => [
+      action,
+      (may as (actor: Actor, row: R) => boolean)(actor, row),
+    ]),
   ) as Record<A, boolean>;
 }

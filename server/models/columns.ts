@@ -4,13 +4,16 @@ import { DataTypes } from "sequelize";
  * Column definitions that recur, made anew for each use: Sequelize writes the column's name into what it is given.
  * Levels are DOUBLE and days DATEONLY: DECIMAL and BIGINT would arrive as strings.
  */
-export const id = () => ({ type: DataTypes.UUID, primaryKey: true, defaultValue: DataTypes.UUIDV4 });
+export const id = () => ({
+  type: DataTypes.UUID,
+  primaryKey: true,
+  defaultValue: DataTypes.UUIDV4,
+});
 export const uuid = () => ({ type: DataTypes.UUID, allowNull: false });
 export const uuidOrNull = () => ({ type: DataTypes.UUID, allowNull: true });
 export const text = () => ({ type: DataTypes.TEXT, allowNull: false });
 export const textOrNull = () => ({ type: DataTypes.TEXT, allowNull: true });
 export const whole = () => ({ type: DataTypes.INTEGER, allowNull: false });
-
 
 export const numberOrNull = () => ({ type: DataTypes.DOUBLE, allowNull: true });
 export const flag = () => ({ type: DataTypes.BOOLEAN, allowNull: false, defaultValue: false });

@@ -1,4 +1,10 @@
-import { type CreationOptional, type InferAttributes, type InferCreationAttributes, Model, type Sequelize } from "sequelize";
+import {
+  type CreationOptional,
+  type InferAttributes,
+  type InferCreationAttributes,
+  Model,
+  type Sequelize,
+} from "sequelize";
 import type { FindingKind, FindingState } from "../../shared/schemas/finding";
 import type { NoticeState } from "../../shared/schemas/notice";
 import * as column from "./columns";

@@ -1,12 +1,12 @@
 import type { Sequelize } from "sequelize";
+import { defineFindingModels } from "./finding";
+import { defineInstrumentModels } from "./instrument";
+import { defineProtectorModels } from "./protector";
+import { defineShiftModels } from "./shift";
 import { defineSiteModels } from "./site";
+import { defineTaskModels } from "./task";
 import { defineUserModels } from "./user";
 import { defineWorkerModels } from "./worker";
-import { defineTaskModels } from "./task";
-import { defineProtectorModels } from "./protector";
-import { defineInstrumentModels } from "./instrument";
-import { defineShiftModels } from "./shift";
-import { defineFindingModels } from "./finding";
 
 export function defineModels(sequelize: Sequelize): void {
   defineSiteModels(sequelize);

@@ -1,9 +1,18 @@
-import { type CreationOptional, type InferAttributes, type InferCreationAttributes, Model, type Sequelize } from "sequelize";
+import {
+  type CreationOptional,
+  type InferAttributes,
+  type InferCreationAttributes,
+  Model,
+  type Sequelize,
+} from "sequelize";
 import type { MeterSettings } from "../../shared/acoustics/types";
 import * as column from "./columns";
 
 /** Dosimeter, sound level meter or calibrator. */
-export class Instrument extends Model<InferAttributes<Instrument>, InferCreationAttributes<Instrument>> {
+export class Instrument extends Model<
+  InferAttributes<Instrument>,
+  InferCreationAttributes<Instrument>
+> {
   declare id: CreationOptional<string>;
   declare organizationId: string;
   declare siteId: string;

@@ -1,9 +1,18 @@
-import { type CreationOptional, type InferAttributes, type InferCreationAttributes, Model, type Sequelize } from "sequelize";
+import {
+  type CreationOptional,
+  type InferAttributes,
+  type InferCreationAttributes,
+  Model,
+  type Sequelize,
+} from "sequelize";
 import type { ProtectorKind } from "../../shared/acoustics/types";
 import * as column from "./columns";
 
 /** A model on the register; its data are revisions with a date. */
-export class ProtectorModel extends Model<InferAttributes<ProtectorModel>, InferCreationAttributes<ProtectorModel>> {
+export class ProtectorModel extends Model<
+  InferAttributes<ProtectorModel>,
+  InferCreationAttributes<ProtectorModel>
+> {
   declare id: CreationOptional<string>;
   declare organizationId: string;
   declare name: string;
@@ -13,7 +22,10 @@ export class ProtectorModel extends Model<InferAttributes<ProtectorModel>, Infer
 }
 
 /** One protector, or two worn together, for a worker and a use. Its dates are a range column. */
-export class Assignment extends Model<InferAttributes<Assignment>, InferCreationAttributes<Assignment>> {
+export class Assignment extends Model<
+  InferAttributes<Assignment>,
+  InferCreationAttributes<Assignment>
+> {
   declare id: CreationOptional<string>;
   declare organizationId: string;
   declare workerId: string;

@@ -1,4 +1,10 @@
-import { type CreationOptional, type InferAttributes, type InferCreationAttributes, Model, type Sequelize } from "sequelize";
+import {
+  type CreationOptional,
+  type InferAttributes,
+  type InferCreationAttributes,
+  Model,
+  type Sequelize,
+} from "sequelize";
 import type { Role } from "../lib/policy";
 import * as column from "./columns";
 
@@ -20,7 +26,10 @@ export class User extends Model<InferAttributes<User>, InferCreationAttributes<U
 }
 
 /** A role held by a user at a site, or at all of them. */
-export class RoleGrant extends Model<InferAttributes<RoleGrant>, InferCreationAttributes<RoleGrant>> {
+export class RoleGrant extends Model<
+  InferAttributes<RoleGrant>,
+  InferCreationAttributes<RoleGrant>
+> {
   declare id: CreationOptional<string>;
   declare organizationId: string;
   declare userId: string;

@@ -15,10 +15,13 @@ const today = "current_date";
 
 /** Sites: everybody with a role knows the sites of their grants; what exposure rests on is the officer's to change. */
 export const sitePolicy = policy<{ id: string }>()({
-  sees: (actor, s) => [actor.at(`${s}.id`, "officer", "supervisor", "worker", "auditor", "administrator")],
+  sees: (actor, s) => [
+    actor.at(`${s}.id`, "officer", "supervisor", "worker", "auditor", "administrator"),
+  ],
   can: {
     /** A new site is nobody's yet: only who administers all of them adds one. */
-    create: (actor) => actor.grants.some(({ role, siteId }) => role === "administrator" && siteId === null),
+    create: (actor) =>
+      actor.grants.some(({ role, siteId }) => role === "administrator" && siteId === null),
     change: (actor, { id }) => actor.isAt(id, "administrator"),
     changeRules: (actor, { id }) => actor.isAt(id, "officer"),
     export: (actor, { id }) => actor.isAt(id, "officer", "auditor"),
@@ -118,7 +121,10 @@ export const findingPolicy = policy<AtSite>()({
 });
 
 export const noticePolicy = policy<AtSite>()({
-  sees: (actor, n) => [actor.at(`${n}.site_id`, "officer", "auditor"), `${n}.recipient_id = '${actor.userId}'`],
+  sees: (actor, n) => [
+    actor.at(`${n}.site_id`, "officer", "auditor"),
+    `${n}.recipient_id = '${actor.userId}'`,
+  ],
   can: { handle: officerAt },
 });
 
@@ -134,7 +140,10 @@ export const userPolicy = policy<{ id: string }>()({
 /** The site an event is about, by its subject. */
 const siteOfEvent = (e: string) => `(CASE ${e}.subject_kind WHEN 'site' THEN ${e}.subject_id
   ${["area", "task", "job", "crew", "worker", "instrument", "shift", "run", "finding", "notice"]
-    .map((kind) => `WHEN '${kind}' THEN (SELECT x.site_id FROM ${kind}s x WHERE x.id = ${e}.subject_id)`)
+    .map(
+      (kind) =>
+        `WHEN '${kind}' THEN (SELECT x.site_id FROM ${kind}s x WHERE x.id = ${e}.subject_id)`,
+    )
     .join(" ")} END)`;
 
 /** The trail: the auditor's whole; an administrator's as far as it is about people, roles and sites. */

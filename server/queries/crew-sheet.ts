@@ -26,24 +26,48 @@ interface OrderRow {
 
 /** What a supervisor acts on, most urgent first. */
 const urgency: readonly FindingKind[] = [
-  "no-protector", "over-limit-at-ear", "dual-protection", "protects-too-little", "peak-or-ceiling", "not-worn-long-enough", "wearing-unknown", "protects-too-much",
+  "no-protector",
+  "over-limit-at-ear",
+  "dual-protection",
+  "protects-too-little",
+  "peak-or-ceiling",
+  "not-worn-long-enough",
+  "wearing-unknown",
+  "protects-too-much",
 ];
 
 /** A crew's expected day, computed from roster, nominal day and usual task levels, beside its last recorded one. */
 export async function crewSheet(actor: Actor, crew: Crew): Promise<z.input<typeof CrewSheetView>> {
-  const site = await row<{ timeZone: string }>(`SELECT time_zone AS "timeZone" FROM sites WHERE id = :id`, { id: crew.siteId });
+  const site = await row<{ timeZone: string }>(
+    `SELECT time_zone AS "timeZone" FROM sites WHERE id = :id`,
+    { id: crew.siteId },
+  );
   const timeZone = site?.timeZone ?? "UTC";
   const today = localDate(new Date(), timeZone);
   const settings = await settingsInForce(crew.siteId, today);
   const members = await crewMembers(crew.id, today);
-  const orders = await openOrders(actor, members.map(({ id }) => id));
-  const last = await row<{ date: string }>("SELECT max(date)::text AS date FROM days WHERE crew_id = :crewId AND date < CAST(:today AS date) AND current_result_id IS NOT NULL", { crewId: crew.id, today });
+  const orders = await openOrders(
+    actor,
+    members.map(({ id }) => id),
+  );
+  const last = await row<{ date: string }>(
+    "SELECT max(date)::text AS date FROM days WHERE crew_id = :crewId AND date < CAST(:today AS date) AND current_result_id IS NOT NULL",
+    { crewId: crew.id, today },
+  );
   const lastDate = last?.date ?? null;
 
   const expected = await expectedDays(crew, today, members, settings);
   const before = lastDate ? await crewMembers(crew.id, lastDate) : [];
-  const recorded = lastDate ? await dayFiguresOf(before.map(({ id }) => id), lastDate) : new Map();
-  const toRow = (member: (typeof members)[number], figures: CrewSheetRow["figures"]): CrewSheetRow => ({
+  const recorded = lastDate
+    ? await dayFiguresOf(
+        before.map(({ id }) => id),
+        lastDate,
+      )
+    : new Map();
+  const toRow = (
+    member: (typeof members)[number],
+    figures: CrewSheetRow["figures"],
+  ): CrewSheetRow => ({
     worker: { id: member.id, name: member.name, employeeNumber: member.employeeNumber },
     isAbsent: member.isAbsent,
     isLoan: member.isLoan,
@@ -51,52 +75,120 @@ export async function crewSheet(actor: Actor, crew: Crew): Promise<z.input<typeo
     order: orders.get(member.id) ?? null,
   });
   const byUrgency = (a: CrewSheetRow, b: CrewSheetRow) =>
-    Number(b.order !== null) - Number(a.order !== null) || (b.figures?.atEarDb ?? -1) - (a.figures?.atEarDb ?? -1) || a.worker.name.localeCompare(b.worker.name);
+    Number(b.order !== null) - Number(a.order !== null) ||
+    (b.figures?.atEarDb ?? -1) - (a.figures?.atEarDb ?? -1) ||
+    a.worker.name.localeCompare(b.worker.name);
   return {
-    crew: { id: crew.id, name: crew.name, siteId: crew.siteId, usualStart: crew.usualStart.slice(0, 5), usualLengthMin: crew.usualLengthMin, timeZone },
-    crews: await rows<{ id: string; name: string }>(`SELECT c.id, c.name FROM crews c WHERE NOT c.is_archived AND ${visible(crewPolicy, actor, "c")} ORDER BY c.name`),
+    crew: {
+      id: crew.id,
+      name: crew.name,
+      siteId: crew.siteId,
+      usualStart: crew.usualStart.slice(0, 5),
+      usualLengthMin: crew.usualLengthMin,
+      timeZone,
+    },
+    crews: await rows<{ id: string; name: string }>(
+      `SELECT c.id, c.name FROM crews c WHERE NOT c.is_archived AND ${visible(crewPolicy, actor, "c")} ORDER BY c.name`,
+    ),
     governingRuleSet: settings.governingRuleSet,
     ruleSetVersion: settings.ruleSetVersion,
-    expected: { date: today, rows: members.map((member) => toRow(member, expected.get(member.id) ?? null)).sort(byUrgency) },
-    last: { date: lastDate, rows: before.map((member) => toRow(member, recorded.get(member.id) ?? null)).sort(byUrgency) },
+    expected: {
+      date: today,
+      rows: members.map((member) => toRow(member, expected.get(member.id) ?? null)).sort(byUrgency),
+    },
+    last: {
+      date: lastDate,
+      rows: before.map((member) => toRow(member, recorded.get(member.id) ?? null)).sort(byUrgency),
+    },
   };
 }
 
-async function expectedDays(crew: Crew, date: string, members: Awaited<ReturnType<typeof crewMembers>>, settings: Awaited<ReturnType<typeof settingsInForce>>) {
+async function expectedDays(
+  crew: Crew,
+  date: string,
+  members: Awaited<ReturnType<typeof crewMembers>>,
+  settings: Awaited<ReturnType<typeof settingsInForce>>,
+) {
   const governing = ruleSetVersion(settings.governingRuleSet, settings.ruleSetVersion);
   if (!governing) throw new Error("a rule set in force is known");
   const ids = `{${members.map(({ id }) => id).join(",")}}`;
   const assignments = await assignmentsOn(ids, date);
   const worn = await lastWearing(ids, date);
-  const models = await modelsOn([...new Set(assignments.flatMap(({ innerModelId, outerModelId }) => (outerModelId ? [innerModelId, outerModelId] : [innerModelId])))], date);
+  const models = await modelsOn(
+    [
+      ...new Set(
+        assignments.flatMap(({ innerModelId, outerModelId }) =>
+          outerModelId ? [innerModelId, outerModelId] : [innerModelId],
+        ),
+      ),
+    ],
+    date,
+  );
   const context: DayContext = {
     tasks: new Map((await gridTasks(crew.siteId, date)).map((task) => [task.id, task])),
     models: new Map(models.map((model) => [model.modelId, model])),
-    site: { wearFromDb: settings.wearFromDb, creditsActivePart: settings.creditsActivePart, usesUncertainty: settings.usesUncertainty },
+    site: {
+      wearFromDb: settings.wearFromDb,
+      creditsActivePart: settings.creditsActivePart,
+      usesUncertainty: settings.usesUncertainty,
+    },
   };
-  return new Map(members.flatMap((member): [string, NonNullable<CrewSheetRow["figures"]>][] => {
-    if (member.isAbsent || member.nominal.length === 0) return [];
-    const tasks = member.nominal.map(({ taskId, durationMin }) => ({ taskId, durationMin, wornPct: worn.get(member.id)?.[taskId] ?? null, wornIsShiftWide: false }));
-    const nominalMin = tasks.reduce((sum, { durationMin }) => sum + durationMin, 0);
-    const shift = { id: "expected", lengthMin: Math.max(crew.usualLengthMin, nominalMin), tasks, unaccounted: { how: "like-the-rest" } as const, readings: [] };
-    const input = buildDayInput(member, date, [shift], assignments.filter(({ workerId }) => workerId === member.id), context);
-    const { decidingTaskId: _, dosePct: __, ...figures } = summarizeDay(input, evaluateDay(input, governing, []), governing);
-    // Nothing is stored of a day to come: the id is the worker's own, so that a list has a key.
-    return [[member.id, { ...figures, resultId: member.id, origin: "computed" }]];
-  }));
+  return new Map(
+    members.flatMap((member): [string, NonNullable<CrewSheetRow["figures"]>][] => {
+      if (member.isAbsent || member.nominal.length === 0) return [];
+      const tasks = member.nominal.map(({ taskId, durationMin }) => ({
+        taskId,
+        durationMin,
+        wornPct: worn.get(member.id)?.[taskId] ?? null,
+        wornIsShiftWide: false,
+      }));
+      const nominalMin = tasks.reduce((sum, { durationMin }) => sum + durationMin, 0);
+      const shift = {
+        id: "expected",
+        lengthMin: Math.max(crew.usualLengthMin, nominalMin),
+        tasks,
+        unaccounted: { how: "like-the-rest" } as const,
+        readings: [],
+      };
+      const input = buildDayInput(
+        member,
+        date,
+        [shift],
+        assignments.filter(({ workerId }) => workerId === member.id),
+        context,
+      );
+      const {
+        decidingTaskId: _,
+        dosePct: __,
+        ...figures
+      } = summarizeDay(input, evaluateDay(input, governing, []), governing);
+      // Nothing is stored of a day to come: the id is the worker's own, so that a list has a key.
+      return [[member.id, { ...figures, resultId: member.id, origin: "computed" }]];
+    }),
+  );
 }
 
-async function openOrders(actor: Actor, workerIds: readonly string[]): Promise<Map<string, NonNullable<CrewSheetRow["order"]>>> {
+async function openOrders(
+  actor: Actor,
+  workerIds: readonly string[],
+): Promise<Map<string, NonNullable<CrewSheetRow["order"]>>> {
   if (workerIds.length === 0) return new Map();
   const found = await rows<OrderRow>(
     `SELECT f.worker_id AS "workerId", f.id AS "findingId", f.kind, f.state, f.facts, f.revision, f.site_id AS "siteId" FROM findings f
      WHERE f.worker_id = ANY (CAST(:ids AS uuid[])) AND f.state <> 'closed' AND ${visible(findingPolicy, actor, "f")}`,
     { ids: `{${workerIds.join(",")}}` },
   );
-  const rank = ({ kind, state }: OrderRow) => urgency.indexOf(kind) + (state === "done" ? urgency.length : 0);
+  const rank = ({ kind, state }: OrderRow) =>
+    urgency.indexOf(kind) + (state === "done" ? urgency.length : 0);
   const orders = new Map<string, NonNullable<CrewSheetRow["order"]>>();
-  for (const { workerId, siteId, ...order } of found.filter(({ kind }) => urgency.includes(kind)).sort((a, b) => rank(a) - rank(b))) {
-    if (!orders.has(workerId)) orders.set(workerId, { ...order, canMarkDone: findingPolicy.can.markDone(actor, { siteId }) && order.state !== "done" });
+  for (const { workerId, siteId, ...order } of found
+    .filter(({ kind }) => urgency.includes(kind))
+    .sort((a, b) => rank(a) - rank(b))) {
+    if (!orders.has(workerId))
+      orders.set(workerId, {
+        ...order,
+        canMarkDone: findingPolicy.can.markDone(actor, { siteId }) && order.state !== "done",
+      });
   }
   return orders;
 }

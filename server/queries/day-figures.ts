@@ -1,9 +1,16 @@
 import type { DayFigures } from "../../shared/schemas/finding";
 import { rows } from "../lib/db";
-import { DAY_FIGURES_COLUMNS, type DayFiguresRow, presentDayFigures } from "../presenters/day-figures";
+import {
+  DAY_FIGURES_COLUMNS,
+  type DayFiguresRow,
+  presentDayFigures,
+} from "../presenters/day-figures";
 
 /** The current figures of these workers on a date. */
-export async function dayFiguresOf(workerIds: readonly string[], date: string): Promise<Map<string, DayFigures>> {
+export async function dayFiguresOf(
+  workerIds: readonly string[],
+  date: string,
+): Promise<Map<string, DayFigures>> {
   if (workerIds.length === 0) return new Map();
   const found = await rows<DayFiguresRow & { workerId: string }>(
     `SELECT d.worker_id AS "workerId", ${DAY_FIGURES_COLUMNS("r")}

@@ -24,52 +24,97 @@ interface MemberRow {
 
 /** Everything that a crew's day is entered with: one answer, a fixed number of statements. */
 export async function dayGrid(crew: Crew, date: string): Promise<DayGridView> {
-  const site = await row<{ name: string; timeZone: string }>(`SELECT name, time_zone AS "timeZone" FROM sites WHERE id = :id`, { id: crew.siteId });
+  const site = await row<{ name: string; timeZone: string }>(
+    `SELECT name, time_zone AS "timeZone" FROM sites WHERE id = :id`,
+    { id: crew.siteId },
+  );
   const members = await crewMembers(crew.id, date);
   const ids = `{${members.map(({ id }) => id).join(",")}}`;
-  const saved = await savedShifts("s.worker_id = ANY (CAST(:ids AS uuid[])) AND s.date = :date", { ids, date });
-  const [tasks, assignments, lastWorn, longest, lastShifts, readings, figures, instruments, entry] = [
-    await gridTasks(crew.siteId, date),
-    await assignmentsOn(ids, date),
-    await lastWearing(ids, date),
-    await longestStays(ids, date),
-    await lastShiftsBefore(ids, crew.id, date),
-    await readingsOfDay(members.map(({ id }) => id), date),
-    await dayFiguresOf(members.map(({ id }) => id), date),
-    await rows<DayGridView["instruments"][number]>(
-      `SELECT id, name, serial_number AS "serialNumber", class, kind, presets FROM instruments WHERE site_id = :siteId AND NOT is_archived AND kind <> 'calibrator' ORDER BY name`,
-      { siteId: crew.siteId },
-    ),
-    await latestEntry(crew.id, date),
-  ];
+  const saved = await savedShifts("s.worker_id = ANY (CAST(:ids AS uuid[])) AND s.date = :date", {
+    ids,
+    date,
+  });
+  const [tasks, assignments, lastWorn, longest, lastShifts, readings, figures, instruments, entry] =
+    [
+      await gridTasks(crew.siteId, date),
+      await assignmentsOn(ids, date),
+      await lastWearing(ids, date),
+      await longestStays(ids, date),
+      await lastShiftsBefore(ids, crew.id, date),
+      await readingsOfDay(
+        members.map(({ id }) => id),
+        date,
+      ),
+      await dayFiguresOf(
+        members.map(({ id }) => id),
+        date,
+      ),
+      await rows<DayGridView["instruments"][number]>(
+        `SELECT id, name, serial_number AS "serialNumber", class, kind, presets FROM instruments WHERE site_id = :siteId AND NOT is_archived AND kind <> 'calibrator' ORDER BY name`,
+        { siteId: crew.siteId },
+      ),
+      await latestEntry(crew.id, date),
+    ];
   const settings = await settingsInForce(crew.siteId, date);
   const columns = new Set([
     ...members.flatMap(({ nominal }) => nominal.map(({ taskId }) => taskId)),
-    ...saved.filter((shift) => shift.crewId === crew.id).flatMap((shift) => shift.tasks.map(({ taskId }) => taskId)),
+    ...saved
+      .filter((shift) => shift.crewId === crew.id)
+      .flatMap((shift) => shift.tasks.map(({ taskId }) => taskId)),
   ]);
-  const modelIds = [...new Set(assignments.flatMap(({ innerModelId, outerModelId }) => [innerModelId, outerModelId]))].filter((id) => id !== null);
+  const modelIds = [
+    ...new Set(
+      assignments.flatMap(({ innerModelId, outerModelId }) => [innerModelId, outerModelId]),
+    ),
+  ].filter((id) => id !== null);
 
   return {
-    crew: { id: crew.id, name: crew.name, siteId: crew.siteId, siteName: site?.name ?? "", usualStart: crew.usualStart.slice(0, 5), usualLengthMin: crew.usualLengthMin, timeZone: site?.timeZone ?? "UTC" },
+    crew: {
+      id: crew.id,
+      name: crew.name,
+      siteId: crew.siteId,
+      siteName: site?.name ?? "",
+      usualStart: crew.usualStart.slice(0, 5),
+      usualLengthMin: crew.usualLengthMin,
+      timeZone: site?.timeZone ?? "UTC",
+    },
     date,
     today: localDate(new Date(), site?.timeZone ?? "UTC"),
     settings: {
-      governingRuleSet: settings.governingRuleSet, ruleSetVersion: settings.ruleSetVersion, comparisonRuleSets: settings.comparisonRuleSets,
-      wearFromDb: settings.wearFromDb, creditsActivePart: settings.creditsActivePart, usesUncertainty: settings.usesUncertainty,
+      governingRuleSet: settings.governingRuleSet,
+      ruleSetVersion: settings.ruleSetVersion,
+      comparisonRuleSets: settings.comparisonRuleSets,
+      wearFromDb: settings.wearFromDb,
+      creditsActivePart: settings.creditsActivePart,
+      usesUncertainty: settings.usesUncertainty,
     },
-    tasks: orderLikeNominal(tasks.map((task) => ({ ...task, isColumn: columns.has(task.id) })), members),
+    tasks: orderLikeNominal(
+      tasks.map((task) => ({ ...task, isColumn: columns.has(task.id) })),
+      members,
+    ),
     models: await modelsOn(modelIds, date),
     instruments,
     rows: members.map(({ nominal, isLoan, isAbsent, ...worker }): GridRow => {
       const own = saved.find((shift) => shift.workerId === worker.id && shift.crewId === crew.id);
       return {
-        worker, isLoan, isAbsent, nominal,
-        assignments: assignments.filter(({ workerId }) => workerId === worker.id).map(({ workerId: _, ...assignment }) => assignment),
+        worker,
+        isLoan,
+        isAbsent,
+        nominal,
+        assignments: assignments
+          .filter(({ workerId }) => workerId === worker.id)
+          .map(({ workerId: _, ...assignment }) => assignment),
         lastWorn: lastWorn.get(worker.id) ?? {},
         longestMin: longest.get(worker.id) ?? {},
         saved: own ? presentSavedShift(own) : null,
-        otherShifts: saved.filter((shift) => shift.workerId === worker.id && shift !== own)
-          .map(({ shiftId, localStart, lengthMin }) => ({ shiftId, crewName: null, localStart, lengthMin })),
+        otherShifts: saved
+          .filter((shift) => shift.workerId === worker.id && shift !== own)
+          .map(({ shiftId, localStart, lengthMin }) => ({
+            shiftId,
+            crewName: null,
+            localStart,
+            lengthMin,
+          })),
         readings: readings.get(worker.id) ?? [],
         lastShift: lastShifts.get(worker.id) ?? null,
         figures: figures.get(worker.id) ?? null,
@@ -103,7 +148,18 @@ interface TaskRow {
 }
 
 /** A site's tasks with the level in force on a date. */
-export async function gridTasks(siteId: string, date: string): Promise<{ id: string; name: string; areaId: string | null; zone: TaskRow["zone"]; level: TaskLevel | null }[]> {
+export async function gridTasks(
+  siteId: string,
+  date: string,
+): Promise<
+  {
+    id: string;
+    name: string;
+    areaId: string | null;
+    zone: TaskRow["zone"];
+    level: TaskLevel | null;
+  }[]
+> {
   const found = await rows<TaskRow>(
     `SELECT k.id, k.name, k.area_id AS "areaId", coalesce(a.zone, 'none') AS zone, (SELECT to_jsonb(x) FROM (
         SELECT ${LEVEL_COLUMNS("l")} FROM task_levels l WHERE l.task_id = k.id AND l.effective_from <= :date
@@ -132,15 +188,21 @@ export async function assignmentsOn(workerIds: string, date: string): Promise<As
 }
 
 export async function modelsOn(modelIds: readonly string[], date: string) {
-  const found = modelIds.length === 0 ? [] : await rows<Parameters<typeof toProtector>[0]>(
-    `SELECT DISTINCT ON (m.id) ${PROTECTOR_COLUMNS} FROM protector_models m JOIN protector_model_revisions p ON p.model_id = m.id AND p.effective_from <= :date
+  const found =
+    modelIds.length === 0
+      ? []
+      : await rows<Parameters<typeof toProtector>[0]>(
+          `SELECT DISTINCT ON (m.id) ${PROTECTOR_COLUMNS} FROM protector_models m JOIN protector_model_revisions p ON p.model_id = m.id AND p.effective_from <= :date
      WHERE m.id = ANY (CAST(:ids AS uuid[])) ORDER BY m.id, p.effective_from DESC, p.number DESC`,
-    { ids: `{${modelIds.join(",")}}`, date },
-  );
+          { ids: `{${modelIds.join(",")}}`, date },
+        );
   return found.map(toProtector);
 }
 
-export async function lastWearing(ids: string, date: string): Promise<Map<string, Record<string, number>>> {
+export async function lastWearing(
+  ids: string,
+  date: string,
+): Promise<Map<string, Record<string, number>>> {
   const found = await rows<{ workerId: string; taskId: string; wornPct: number }>(
     `SELECT DISTINCT ON (s.worker_id, t.task_id) s.worker_id AS "workerId", t.task_id AS "taskId", t.worn_pct AS "wornPct"
      FROM shifts s JOIN shift_tasks t ON t.shift_revision_id = s.current_revision_id
@@ -148,10 +210,17 @@ export async function lastWearing(ids: string, date: string): Promise<Map<string
      ORDER BY s.worker_id, t.task_id, s.date DESC`,
     { ids, date },
   );
-  return nest(found, ({ workerId }) => workerId, ({ taskId, wornPct }) => [taskId, wornPct]);
+  return nest(
+    found,
+    ({ workerId }) => workerId,
+    ({ taskId, wornPct }) => [taskId, wornPct],
+  );
 }
 
-async function longestStays(ids: string, date: string): Promise<Map<string, Record<string, number>>> {
+async function longestStays(
+  ids: string,
+  date: string,
+): Promise<Map<string, Record<string, number>>> {
   const found = await rows<{ workerId: string; taskId: string; longestMin: number }>(
     `SELECT s.worker_id AS "workerId", t.task_id AS "taskId", max(t.duration_min) AS "longestMin"
      FROM shifts s JOIN shift_tasks t ON t.shift_revision_id = s.current_revision_id
@@ -159,10 +228,18 @@ async function longestStays(ids: string, date: string): Promise<Map<string, Reco
      GROUP BY s.worker_id, t.task_id`,
     { ids, date },
   );
-  return nest(found, ({ workerId }) => workerId, ({ taskId, longestMin }) => [taskId, longestMin]);
+  return nest(
+    found,
+    ({ workerId }) => workerId,
+    ({ taskId, longestMin }) => [taskId, longestMin],
+  );
 }
 
-function nest<Row>(found: readonly Row[], outer: (row: Row) => string, entry: (row: Row) => [string, number]): Map<string, Record<string, number>> {
+function nest<Row>(
+  found: readonly Row[],
+  outer: (row: Row) => string,
+  entry: (row: Row) => [string, number],
+): Map<string, Record<string, number>> {
   const result = new Map<string, Record<string, number>>();
   for (const one of found) {
     const [key, value] = entry(one);
@@ -181,7 +258,11 @@ interface LastShiftRow {
   tasks: ShiftTaskInput[];
 }
 
-async function lastShiftsBefore(ids: string, crewId: string, date: string): Promise<Map<string, NonNullable<GridRow["lastShift"]>>> {
+async function lastShiftsBefore(
+  ids: string,
+  crewId: string,
+  date: string,
+): Promise<Map<string, NonNullable<GridRow["lastShift"]>>> {
   const found = await rows<LastShiftRow>(
     `SELECT w.id AS "workerId", s.date::text AS date, to_char(v.local_start, 'HH24:MI') AS "localStart", v.length_min AS "lengthMin",
        v.unaccounted_how AS how, v.unaccounted_level_db AS "quietDb",
@@ -192,10 +273,12 @@ async function lastShiftsBefore(ids: string, crewId: string, date: string): Prom
      JOIN shift_revisions v ON v.id = s.current_revision_id`,
     { ids, crewId, date },
   );
-  return new Map(found.map(({ workerId, how, quietDb, ...shift }) => [
-    workerId,
-    { ...shift, unaccounted: how === "quiet" ? { how, levelDb: quietDb! } : { how } },
-  ]));
+  return new Map(
+    found.map(({ workerId, how, quietDb, ...shift }) => [
+      workerId,
+      { ...shift, unaccounted: how === "quiet" ? { how, levelDb: quietDb! } : { how } },
+    ]),
+  );
 }
 
 async function latestEntry(crewId: string, date: string): Promise<string | null> {
@@ -208,11 +291,18 @@ async function latestEntry(crewId: string, date: string): Promise<string | null>
 }
 
 /** The order of the day's work where the jobs give one; other tasks by name behind. */
-function orderLikeNominal<T extends { id: string; name: string }>(tasks: T[], members: readonly MemberRow[]): T[] {
+function orderLikeNominal<T extends { id: string; name: string }>(
+  tasks: T[],
+  members: readonly MemberRow[],
+): T[] {
   const place = new Map<string, number>();
   for (const { nominal } of members) {
-    nominal.forEach(({ taskId }, index) => place.set(taskId, Math.min(place.get(taskId) ?? index, index)));
+    for (const [index, { taskId }] of nominal.entries()) {
+      place.set(taskId, Math.min(place.get(taskId) ?? index, index));
+    }
   }
   const last = Number.MAX_SAFE_INTEGER;
-  return tasks.toSorted((a, b) => (place.get(a.id) ?? last) - (place.get(b.id) ?? last) || a.name.localeCompare(b.name));
+  return tasks.toSorted(
+    (a, b) => (place.get(a.id) ?? last) - (place.get(b.id) ?? last) || a.name.localeCompare(b.name),
+  );
 }

@@ -1,5 +1,15 @@
 import type {
-  DayInput, MeterSettings, OctaveBandValues, ProtectorData, ReadingInput, RuleSetVersion, ShiftInput, TaskLevel, TimedTask, Unaccounted, Zone,
+  DayInput,
+  MeterSettings,
+  OctaveBandValues,
+  ProtectorData,
+  ReadingInput,
+  RuleSetVersion,
+  ShiftInput,
+  TaskLevel,
+  TimedTask,
+  Unaccounted,
+  Zone,
 } from "../../shared/acoustics/types";
 import { ruleSetInForce, ruleSetVersion } from "../../shared/rule-sets";
 import type { ProtectorFacts } from "../../shared/schemas/evaluation";
@@ -21,7 +31,12 @@ export interface DayRefs {
   targetDb: number | null;
   shifts: {
     revisionId: string;
-    tasks: { id: string; levelId: string | null; zone: Zone; use: { id: string; inner: string | null; outer: string | null } | null }[];
+    tasks: {
+      id: string;
+      levelId: string | null;
+      zone: Zone;
+      use: { id: string; inner: string | null; outer: string | null } | null;
+    }[];
     runRevisionIds: string[];
   }[];
 }
@@ -61,7 +76,9 @@ const modelRevision = (modelId: string) => `(SELECT p.id FROM protector_model_re
  */
 export async function resolveDays(days: readonly DayKey[]): Promise<ResolvedDay[]> {
   if (days.length === 0) return [];
-  const parameter = { days: JSON.stringify(days.map(({ workerId, date }) => ({ workerId, date }))) };
+  const parameter = {
+    days: JSON.stringify(days.map(({ workerId, date }) => ({ workerId, date }))),
+  };
   const tasks = await rows<ShiftTaskRow>(
     `WITH ${wanted}
      SELECT w.worker_id AS "workerId", w.date::text AS date, s.id AS "shiftId", s.current_revision_id AS "revisionId", s.site_id AS "siteId",
@@ -84,14 +101,24 @@ export async function resolveDays(days: readonly DayKey[]): Promise<ResolvedDay[
     parameter,
   );
   if (tasks.length === 0) return [];
-  const runs = await rows<{ workerId: string; date: string; shiftId: string | null; revisionId: string }>(
+  const runs = await rows<{
+    workerId: string;
+    date: string;
+    shiftId: string | null;
+    revisionId: string;
+  }>(
     `WITH ${wanted}
      SELECT w.worker_id AS "workerId", w.date::text AS date, r.shift_id AS "shiftId", r.current_revision_id AS "revisionId"
      FROM wanted w JOIN runs r ON r.worker_id = w.worker_id AND r.date = w.date AND NOT r.is_void
      ORDER BY r.id`,
     parameter,
   );
-  const workers = await rows<{ id: string; jobId: string | null; mustWear: boolean; targetDb: number | null }>(
+  const workers = await rows<{
+    id: string;
+    jobId: string | null;
+    mustWear: boolean;
+    targetDb: number | null;
+  }>(
     `SELECT id, job_id AS "jobId", must_wear AS "mustWear", personal_target_db AS "targetDb" FROM workers WHERE id IN (:ids)`,
     { ids: [...new Set(days.map(({ workerId }) => workerId))] },
   );
@@ -99,7 +126,13 @@ export async function resolveDays(days: readonly DayKey[]): Promise<ResolvedDay[
     const [siteId, date] = key.split(" ");
     return { siteId, date };
   });
-  const settings = await rows<{ siteId: string; date: string; id: string; governing: string; comparison: string[] }>(
+  const settings = await rows<{
+    siteId: string;
+    date: string;
+    id: string;
+    governing: string;
+    comparison: string[];
+  }>(
     `SELECT x."siteId", x.date::text AS date, s.id, s.governing_rule_set AS governing, s.comparison_rule_sets AS comparison
      FROM jsonb_to_recordset(CAST(:siteDays AS jsonb)) AS x("siteId" uuid, date date)
      JOIN LATERAL (SELECT * FROM site_settings t WHERE t.site_id = x."siteId" AND t.effective_from <= x.date
@@ -110,37 +143,59 @@ export async function resolveDays(days: readonly DayKey[]): Promise<ResolvedDay[
   const settingsOf = new Map(settings.map((row) => [`${row.siteId} ${row.date}`, row]));
   const workerOf = new Map(workers.map((row) => [row.id, row]));
   const runsOf = groupBy(runs, ({ workerId, date }) => `${workerId} ${date}`);
-  return [...groupBy(tasks, ({ workerId, date }) => `${workerId} ${date}`)].flatMap(([key, ofDay]) => {
-    const { workerId, date, siteId, crewId } = ofDay[0]!;
-    const site = settingsOf.get(`${siteId} ${date}`);
-    const worker = workerOf.get(workerId);
-    if (!site || !worker) return [];
-    const governing = ruleSetInForce(site.governing, date);
-    if (!governing) return [];
-    const comparison = site.comparison.flatMap((name): [string, number][] => {
-      const found = ruleSetInForce(name, date);
-      return found ? [[found.key, found.version]] : [];
-    });
-    const ofShifts = [...groupBy(ofDay, ({ shiftId }) => shiftId)];
-    const runsOfDay = runsOf.get(key) ?? [];
-    const shifts = ofShifts.map(([shiftId, ofShift]) => ({
-      revisionId: ofShift[0]!.revisionId,
-      tasks: ofShift.flatMap((row) => (row.timedTaskId === null ? [] : [{
-        id: row.timedTaskId,
-        levelId: row.levelId,
-        zone: row.zone,
-        use: row.assignmentId === null ? null : { id: row.assignmentId, inner: row.innerRevisionId, outer: row.outerRevisionId },
-      }])),
-      // A run that names no shift belongs to the only one of its day.
-      runRevisionIds: runsOfDay
-        .filter((run) => run.shiftId === shiftId || (run.shiftId === null && ofShifts.length === 1))
-        .map(({ revisionId }) => revisionId),
-    }));
-    const refs: DayRefs = {
-      settingsId: site.id, governing: [governing.key, governing.version], comparison, mustWear: worker.mustWear, targetDb: worker.targetDb, shifts,
-    };
-    return [{ workerId, date, siteId, crewId, jobId: worker.jobId, refs }];
-  });
+  return [...groupBy(tasks, ({ workerId, date }) => `${workerId} ${date}`)].flatMap(
+    ([key, ofDay]) => {
+      const { workerId, date, siteId, crewId } = ofDay[0]!;
+      const site = settingsOf.get(`${siteId} ${date}`);
+      const worker = workerOf.get(workerId);
+      if (!site || !worker) return [];
+      const governing = ruleSetInForce(site.governing, date);
+      if (!governing) return [];
+      const comparison = site.comparison.flatMap((name): [string, number][] => {
+        const found = ruleSetInForce(name, date);
+        return found ? [[found.key, found.version]] : [];
+      });
+      const ofShifts = [...groupBy(ofDay, ({ shiftId }) => shiftId)];
+      const runsOfDay = runsOf.get(key) ?? [];
+      const shifts = ofShifts.map(([shiftId, ofShift]) => ({
+        revisionId: ofShift[0]!.revisionId,
+        tasks: ofShift.flatMap((row) =>
+          row.timedTaskId === null
+            ? []
+            : [
+                {
+                  id: row.timedTaskId,
+                  levelId: row.levelId,
+                  zone: row.zone,
+                  use:
+                    row.assignmentId === null
+                      ? null
+                      : {
+                          id: row.assignmentId,
+                          inner: row.innerRevisionId,
+                          outer: row.outerRevisionId,
+                        },
+                },
+              ],
+        ),
+        // A run that names no shift belongs to the only one of its day.
+        runRevisionIds: runsOfDay
+          .filter(
+            (run) => run.shiftId === shiftId || (run.shiftId === null && ofShifts.length === 1),
+          )
+          .map(({ revisionId }) => revisionId),
+      }));
+      const refs: DayRefs = {
+        settingsId: site.id,
+        governing: [governing.key, governing.version],
+        comparison,
+        mustWear: worker.mustWear,
+        targetDb: worker.targetDb,
+        shifts,
+      };
+      return [{ workerId, date, siteId, crewId, jobId: worker.jobId, refs }];
+    },
+  );
 }
 
 interface LevelRow extends Omit<TaskLevel, "revisionId" | "peak" | "octaveBandsDb"> {
@@ -150,13 +205,22 @@ interface LevelRow extends Omit<TaskLevel, "revisionId" | "peak" | "octaveBandsD
   peakWeighting: "A" | "C" | "Z" | null;
 }
 
-export const LEVEL_COLUMNS = (l: string) => `${l}.id, ${l}.metric, ${l}.level_db AS "levelDb", ${l}.lc_minus_la_db AS "lcMinusLaDb",
+export const LEVEL_COLUMNS = (
+  l: string,
+) => `${l}.id, ${l}.metric, ${l}.level_db AS "levelDb", ${l}.lc_minus_la_db AS "lcMinusLaDb",
   ${l}.octave_bands_db AS "octaveBandsDb", ${l}.las_max_db AS "lasMaxDb", ${l}.peak_db AS "peakDb", ${l}.peak_weighting AS "peakWeighting",
   ${l}.samples_db AS "samplesDb", ${l}.instrument_class AS instrument, ${l}.grade`;
 
 export function toTaskLevel(row: LevelRow): TaskLevel {
   const { id, peakDb, peakWeighting, ...facts } = row;
-  return { ...facts, revisionId: id, peak: peakDb === null || peakWeighting === null ? null : { levelDb: peakDb, weighting: peakWeighting } };
+  return {
+    ...facts,
+    revisionId: id,
+    peak:
+      peakDb === null || peakWeighting === null
+        ? null
+        : { levelDb: peakDb, weighting: peakWeighting },
+  };
 }
 
 interface ProtectorRow {
@@ -208,7 +272,10 @@ interface ReadingRow extends MeterSettings {
 export const instrumentClass = (kind: string, meterClass: string): ReadingInput["instrument"] =>
   kind === "dosimeter" ? "dosimeter" : meterClass === "1" ? "class-1-meter" : "class-2-meter";
 
-async function byId<Row extends { id: string }>(ids: Iterable<string | null>, text: string): Promise<Map<string, Row>> {
+async function byId<Row extends { id: string }>(
+  ids: Iterable<string | null>,
+  text: string,
+): Promise<Map<string, Row>> {
   const unique = [...new Set(ids)].filter((id) => id !== null);
   if (unique.length === 0) return new Map();
   const found = await rows<Row>(text, { ids: `{${unique.join(",")}}` });
@@ -216,7 +283,9 @@ async function byId<Row extends { id: string }>(ids: Iterable<string | null>, te
 }
 
 /** The engine's inputs, built from the revisions that the refs name. In the order of the refs. */
-export async function hydrateDays(days: readonly { workerId: string; date: string; refs: DayRefs }[]): Promise<DayInput[]> {
+export async function hydrateDays(
+  days: readonly { workerId: string; date: string; refs: DayRefs }[],
+): Promise<DayInput[]> {
   const shifts = days.flatMap(({ refs }) => refs.shifts);
   const tasks = shifts.flatMap((shift) => shift.tasks);
   const uses = tasks.flatMap(({ use }) => (use ? [use] : []));
@@ -238,24 +307,37 @@ export async function hydrateDays(days: readonly { workerId: string; date: strin
     uses.flatMap(({ inner, outer }) => [inner, outer]),
     `SELECT ${PROTECTOR_COLUMNS} FROM protector_model_revisions p JOIN protector_models m ON m.id = p.model_id WHERE p.id = ANY (CAST(:ids AS uuid[]))`,
   );
-  const settings = await byId<{ id: string; wearFromDb: number; creditsActivePart: boolean; usesUncertainty: boolean }>(
+  const settings = await byId<{
+    id: string;
+    wearFromDb: number;
+    creditsActivePart: boolean;
+    usesUncertainty: boolean;
+  }>(
     days.map(({ refs }) => refs.settingsId),
     `SELECT id, wear_from_db AS "wearFromDb", credits_active_part AS "creditsActivePart", uses_uncertainty AS "usesUncertainty"
      FROM site_settings WHERE id = ANY (CAST(:ids AS uuid[]))`,
   );
   const runIds = [...new Set(shifts.flatMap(({ runRevisionIds }) => runRevisionIds))];
-  const readings = runIds.length === 0 ? [] : await rows<ReadingRow>(
-    `SELECT g.id, g.run_id AS "runId", g.run_revision_id AS "runRevisionId", v.duration_min AS "durationMin", v.covers, v.kept_reason AS "keptReason",
+  const readings =
+    runIds.length === 0
+      ? []
+      : await rows<ReadingRow>(
+          `SELECT g.id, g.run_id AS "runId", g.run_revision_id AS "runRevisionId", v.duration_min AS "durationMin", v.covers, v.kept_reason AS "keptReason",
        i.kind, i.class, g.criterion_level_db AS "criterionLevelDb", g.exchange_rate_db AS "exchangeRateDb", g.threshold_db AS "thresholdDb",
        g.weighting, g.response, g.dose_pct AS "dosePct", g.average_db AS "averageDb", g.lceq_db AS "lceqDb", g.las_max_db AS "lasMaxDb",
        g.peak_db AS "peakDb", g.peak_weighting AS "peakWeighting"
      FROM readings g JOIN run_revisions v ON v.id = g.run_revision_id JOIN runs r ON r.id = g.run_id JOIN instruments i ON i.id = r.instrument_id
      WHERE g.run_revision_id = ANY (CAST(:ids AS uuid[])) ORDER BY g.run_id, g.position`,
-    { ids: `{${runIds.join(",")}}` },
-  );
+          { ids: `{${runIds.join(",")}}` },
+        );
   const readingsOf = groupBy(readings, ({ runRevisionId }) => runRevisionId);
 
-  const toTimed = ({ id, levelId, zone, use }: DayRefs["shifts"][number]["tasks"][number]): TimedTask => {
+  const toTimed = ({
+    id,
+    levelId,
+    zone,
+    use,
+  }: DayRefs["shifts"][number]["tasks"][number]): TimedTask => {
     const task = timed.get(id)!;
     const level = levelId === null ? null : levels.get(levelId);
     const inner = use?.inner ? protectors.get(use.inner) : undefined;
@@ -267,9 +349,17 @@ export async function hydrateDays(days: readonly { workerId: string; date: strin
       durationMin: task.durationMin,
       level: level ? toTaskLevel(level) : null,
       zone,
-      protection: use && inner
-        ? { assignmentId: use.id, inner: toProtector(inner), outer: outer ? toProtector(outer) : null, combinationBands: null, ownFitDb: null, activeCheckPassed: false }
-        : null,
+      protection:
+        use && inner
+          ? {
+              assignmentId: use.id,
+              inner: toProtector(inner),
+              outer: outer ? toProtector(outer) : null,
+              combinationBands: null,
+              ownFitDb: null,
+              activeCheckPassed: false,
+            }
+          : null,
       wornPct: task.wornPct,
       wornIsShiftWide: task.wornIsShiftWide,
     };
@@ -281,7 +371,11 @@ export async function hydrateDays(days: readonly { workerId: string; date: strin
       date,
       personalTargetDb: refs.targetDb,
       mustWear: refs.mustWear,
-      site: { wearFromDb: site.wearFromDb, creditsActivePart: site.creditsActivePart, usesUncertainty: site.usesUncertainty },
+      site: {
+        wearFromDb: site.wearFromDb,
+        creditsActivePart: site.creditsActivePart,
+        usesUncertainty: site.usesUncertainty,
+      },
       shifts: refs.shifts.map(({ revisionId, tasks: shiftTasks, runRevisionIds }): ShiftInput => {
         const revision = revisions.get(revisionId)!;
         return {
@@ -289,8 +383,13 @@ export async function hydrateDays(days: readonly { workerId: string; date: strin
           revisionId,
           lengthMin: revision.lengthMin,
           tasks: shiftTasks.map(toTimed),
-          unaccounted: revision.how === "quiet" ? { how: "quiet", levelDb: revision.quietDb! } : { how: revision.how },
-          readings: runRevisionIds.flatMap((runRevisionId) => readingsOf.get(runRevisionId) ?? []).map(toReading),
+          unaccounted:
+            revision.how === "quiet"
+              ? { how: "quiet", levelDb: revision.quietDb! }
+              : { how: revision.how },
+          readings: runRevisionIds
+            .flatMap((runRevisionId) => readingsOf.get(runRevisionId) ?? [])
+            .map(toReading),
         };
       }),
     };
@@ -298,13 +397,34 @@ export async function hydrateDays(days: readonly { workerId: string; date: strin
 }
 
 function toReading(row: ReadingRow): ReadingInput {
-  const { id, runId, criterionLevelDb, exchangeRateDb, thresholdDb, weighting, response, durationMin, covers, keptReason } = row;
+  const {
+    id,
+    runId,
+    criterionLevelDb,
+    exchangeRateDb,
+    thresholdDb,
+    weighting,
+    response,
+    durationMin,
+    covers,
+    keptReason,
+  } = row;
   return {
-    id, runId, durationMin, covers, keptReason,
+    id,
+    runId,
+    durationMin,
+    covers,
+    keptReason,
     settings: { criterionLevelDb, exchangeRateDb, thresholdDb, weighting, response },
     instrument: instrumentClass(row.kind, row.class),
-    dosePct: row.dosePct, averageDb: row.averageDb, lceqDb: row.lceqDb, lasMaxDb: row.lasMaxDb,
-    peak: row.peakDb === null || row.peakWeighting === null ? null : { levelDb: row.peakDb, weighting: row.peakWeighting },
+    dosePct: row.dosePct,
+    averageDb: row.averageDb,
+    lceqDb: row.lceqDb,
+    lasMaxDb: row.lasMaxDb,
+    peak:
+      row.peakDb === null || row.peakWeighting === null
+        ? null
+        : { levelDb: row.peakDb, weighting: row.peakWeighting },
   };
 }
 
@@ -313,7 +433,10 @@ function toReading(row: ReadingRow): ReadingInput {
  *
  * @throws Error where one is unknown to this program: a version is never taken away.
  */
-export function ruleSetsOf(refs: Pick<DayRefs, "governing" | "comparison">): { governing: RuleSetVersion; comparison: RuleSetVersion[] } {
+export function ruleSetsOf(refs: Pick<DayRefs, "governing" | "comparison">): {
+  governing: RuleSetVersion;
+  comparison: RuleSetVersion[];
+} {
   const find = ([key, version]: [string, number]) => {
     const found = ruleSetVersion(key, version);
     if (!found) throw new Error(`rule set ${key} has no version ${version}`);

@@ -7,7 +7,11 @@ interface Found extends Omit<NoticeRow, "notBefore" | "sentAt"> {
 }
 
 /** Notices with whom they are about; `condition` is on the notice `n`. */
-export async function findNotices(condition: string, replacements: Record<string, unknown>, limit = 200): Promise<NoticeRow[]> {
+export async function findNotices(
+  condition: string,
+  replacements: Record<string, unknown>,
+  limit = 200,
+): Promise<NoticeRow[]> {
   const found = await rows<Found>(
     `SELECT n.id, n.entry_id AS "entryId", u.name AS "recipientName", n.audience, n.state, n.not_before AS "notBefore", n.sent_at AS "sentAt", n.tries,
        n.last_error AS "lastError", n.replaces_id AS "replacesId", n.revision,
@@ -17,23 +21,39 @@ export async function findNotices(condition: string, replacements: Record<string
      FROM notices n JOIN users u ON u.id = n.recipient_id WHERE ${condition} ORDER BY n.not_before, n.created_at, n.id LIMIT ${limit}`,
     replacements,
   );
-  return found.map((row) => ({ ...row, notBefore: row.notBefore.toISOString(), sentAt: row.sentAt?.toISOString() ?? null }));
+  return found.map((row) => ({
+    ...row,
+    notBefore: row.notBefore.toISOString(),
+    sentAt: row.sentAt?.toISOString() ?? null,
+  }));
 }
 
 export async function entryNotices(entryId: string): Promise<EntryNotices> {
-  return summarize(entryId, await findNotices("n.entry_id = :entryId AND n.state <> 'withdrawn'", { entryId }));
+  return summarize(
+    entryId,
+    await findNotices("n.entry_id = :entryId AND n.state <> 'withdrawn'", { entryId }),
+  );
 }
 
 export function summarize(entryId: string, notices: NoticeRow[]): EntryNotices {
   const states = new Set(notices.map(({ state }) => state));
-  const state = notices.length === 0 ? "none"
-    : states.size === 1 && states.has("held") ? "held"
-    : states.has("waiting") ? "waiting"
-    : states.has("held") ? "part" : "sent";
+  const state =
+    notices.length === 0
+      ? "none"
+      : states.size === 1 && states.has("held")
+        ? "held"
+        : states.has("waiting")
+          ? "waiting"
+          : states.has("held")
+            ? "part"
+            : "sent";
   return {
     entryId,
     state,
-    notBefore: notices.find((notice) => notice.state === "waiting")?.notBefore ?? notices[0]?.notBefore ?? null,
+    notBefore:
+      notices.find((notice) => notice.state === "waiting")?.notBefore ??
+      notices[0]?.notBefore ??
+      null,
     people: new Set(notices.map(({ recipientName }) => recipientName)).size,
     notices,
   };

@@ -1,11 +1,20 @@
 import type { z } from "zod";
-import type { FindingFilter, FindingPage, FindingRow, FindingView } from "../../shared/schemas/finding";
+import type {
+  FindingFilter,
+  FindingPage,
+  FindingRow,
+  FindingView,
+} from "../../shared/schemas/finding";
 import { decodeCursor, pageFrom } from "../lib/cursor";
 import { rows } from "../lib/db";
 import { type Actor, abilities, visible } from "../lib/policy";
 import type { Finding } from "../models/finding";
 import { findingPolicy } from "../policies";
-import { DAY_FIGURES_COLUMNS, type DayFiguresRow, presentDayFigures } from "../presenters/day-figures";
+import {
+  DAY_FIGURES_COLUMNS,
+  type DayFiguresRow,
+  presentDayFigures,
+} from "../presenters/day-figures";
 
 type Found = Omit<FindingRow, "figures" | "can" | "worker"> & {
   workerId: string | null;
@@ -23,10 +32,16 @@ const SELECT_FINDINGS = `SELECT f.id, f.kind, f.state, f.criterion, f.use_key AS
   FROM findings f LEFT JOIN workers w ON w.id = f.worker_id LEFT JOIN jobs j ON j.id = f.job_id
   LEFT JOIN instruments i ON i.id = f.instrument_id LEFT JOIN users o ON o.id = f.owner_id`;
 
-function present(actor: Actor, { workerId, workerName, employeeNumber, figures, ...finding }: Found): FindingRow {
+function present(
+  actor: Actor,
+  { workerId, workerName, employeeNumber, figures, ...finding }: Found,
+): FindingRow {
   return {
     ...finding,
-    worker: workerId === null ? null : { id: workerId, name: workerName ?? "", employeeNumber: employeeNumber ?? "" },
+    worker:
+      workerId === null
+        ? null
+        : { id: workerId, name: workerName ?? "", employeeNumber: employeeNumber ?? "" },
     figures: figures ? presentDayFigures(figures) : null,
     can: abilities(findingPolicy, actor, finding),
   };
@@ -40,23 +55,51 @@ const stateCondition: Record<z.output<typeof FindingFilter>["state"], string> = 
 };
 
 /** Findings, soonest due first. */
-export async function listFindings(actor: Actor, filter: z.output<typeof FindingFilter>): Promise<z.input<typeof FindingPage>> {
+export async function listFindings(
+  actor: Actor,
+  filter: z.output<typeof FindingFilter>,
+): Promise<z.input<typeof FindingPage>> {
   const cursor = decodeCursor(filter.cursor, 2);
   const conditions = [visible(findingPolicy, actor, "f"), stateCondition[filter.state]];
   if (filter.siteId) conditions.push("f.site_id = :siteId");
   if (filter.workerId) conditions.push("f.worker_id = :workerId");
   if (filter.kind) conditions.push("f.kind = :kind");
-  if (cursor) conditions.push("(coalesce(f.due_on, 'infinity'), f.id) > (coalesce(CAST(:dueOn AS date), 'infinity'), CAST(:id AS uuid))");
+  if (cursor)
+    conditions.push(
+      "(coalesce(f.due_on, 'infinity'), f.id) > (coalesce(CAST(:dueOn AS date), 'infinity'), CAST(:id AS uuid))",
+    );
   const found = await rows<Found>(
     `${SELECT_FINDINGS} WHERE ${conditions.join(" AND ")} ORDER BY coalesce(f.due_on, 'infinity'), f.id LIMIT :limit`,
-    { siteId: filter.siteId, workerId: filter.workerId, kind: filter.kind, dueOn: cursor?.[0] ?? null, id: cursor?.[1] ?? null, limit: filter.limit + 1 },
+    {
+      siteId: filter.siteId,
+      workerId: filter.workerId,
+      kind: filter.kind,
+      dueOn: cursor?.[0] ?? null,
+      id: cursor?.[1] ?? null,
+      limit: filter.limit + 1,
+    },
   );
-  return pageFrom(found.map((one) => present(actor, one)), filter.limit, ({ dueOn, id }) => [dueOn, id]);
+  return pageFrom(
+    found.map((one) => present(actor, one)),
+    filter.limit,
+    ({ dueOn, id }) => [dueOn, id],
+  );
 }
 
-export async function findingView(actor: Actor, finding: Finding): Promise<z.input<typeof FindingView>> {
+export async function findingView(
+  actor: Actor,
+  finding: Finding,
+): Promise<z.input<typeof FindingView>> {
   const [found] = await rows<Found>(`${SELECT_FINDINGS} WHERE f.id = :id`, { id: finding.id });
-  const steps = await rows<{ id: string; kind: FindingView["steps"][number]["kind"]; fromState: FindingView["state"] | null; toState: FindingView["state"] | null; text: string | null; authorName: string | null; at: Date }>(
+  const steps = await rows<{
+    id: string;
+    kind: FindingView["steps"][number]["kind"];
+    fromState: FindingView["state"] | null;
+    toState: FindingView["state"] | null;
+    text: string | null;
+    authorName: string | null;
+    at: Date;
+  }>(
     `SELECT s.id, s.kind, s.from_state AS "fromState", s.to_state AS "toState", s.text, u.name AS "authorName", s.created_at AS at
      FROM finding_steps s LEFT JOIN users u ON u.id = s.author_id WHERE s.finding_id = :id ORDER BY s.created_at, s.id`,
     { id: finding.id },
@@ -65,7 +108,13 @@ export async function findingView(actor: Actor, finding: Finding): Promise<z.inp
     `SELECT ${DAY_FIGURES_COLUMNS("r")} FROM finding_evidence e JOIN day_results r ON r.id = e.result_id WHERE e.finding_id = :id ORDER BY e.date DESC LIMIT 60`,
     { id: finding.id },
   );
-  const told = await rows<{ noticeId: string; name: string; audience: string; state: string; at: Date | null }>(
+  const told = await rows<{
+    noticeId: string;
+    name: string;
+    audience: string;
+    state: string;
+    at: Date | null;
+  }>(
     `SELECT DISTINCT n.id AS "noticeId", u.name, n.audience, n.state, coalesce(n.sent_at, n.not_before) AS at
      FROM notice_items i JOIN notices n ON n.id = i.notice_id JOIN users u ON u.id = n.recipient_id WHERE i.finding_id = :id ORDER BY at`,
     { id: finding.id },

@@ -13,7 +13,9 @@ const IN_NOISE_DB = 80;
 /** Names listed at most; the count is of all. */
 const NAMES_LIMIT = 2000;
 
-const atEarKeys = RULE_SETS.filter((ruleSet) => mainLimit(ruleSet).judged === "at-the-ear").map(({ key }) => `'${key}'`);
+const atEarKeys = RULE_SETS.filter((ruleSet) => mainLimit(ruleSet).judged === "at-the-ear").map(
+  ({ key }) => `'${key}'`,
+);
 const judgesAtEar = `r.governing_rule_set IN (${[...new Set(atEarKeys)].join(", ")})`;
 /** A line that the rule set does not judge is not missing. */
 const isNotAssessed = `(r.verdict_outside = 'not-assessed' OR (r.verdict_at_ear = 'not-assessed' AND ${judgesAtEar}))`;
@@ -53,11 +55,16 @@ const gapQueries: Record<Kind, (actor: Actor) => string> = {
     JOIN day_results r ON r.id = e.result_id LEFT JOIN tasks k ON k.id = r.deciding_task_id
     WHERE f.kind = 'no-protector' AND f.state <> 'closed' AND ${visible(findingPolicy, actor, "f")} AND ${inYear(actor)}
     GROUP BY f.worker_id`,
-  "notice-late": (actor) => notices(actor, "n.state IN ('sent', 'possibly-sent') AND n.sent_at > n.created_at + interval '1 day'"),
-  "notice-not-sent": (actor) => notices(
-    actor,
-    "(n.state IN ('failed', 'possibly-sent', 'held') OR (n.state IN ('waiting', 'sending') AND (n.last_error IS NOT NULL OR n.not_before < now() - interval '1 day')))",
-  ),
+  "notice-late": (actor) =>
+    notices(
+      actor,
+      "n.state IN ('sent', 'possibly-sent') AND n.sent_at > n.created_at + interval '1 day'",
+    ),
+  "notice-not-sent": (actor) =>
+    notices(
+      actor,
+      "(n.state IN ('failed', 'possibly-sent', 'held') OR (n.state IN ('waiting', 'sending') AND (n.last_error IS NOT NULL OR n.not_before < now() - interval '1 day')))",
+    ),
   "not-assessed": (actor) => `
     SELECT d.worker_id AS id, coalesce(r.reason, CASE WHEN r.id IS NULL THEN 'not-computed' END) AS note, d.date
     FROM days d LEFT JOIN day_results r ON r.id = d.current_result_id
@@ -71,11 +78,19 @@ interface YearOfSite {
 }
 
 /** What is missing in a site's year, and its months in figures. A fixed number of statements. */
-export async function yearGaps(actor: Actor, { siteId, year }: YearOfSite): Promise<z.input<typeof GapsView>> {
+export async function yearGaps(
+  actor: Actor,
+  { siteId, year }: YearOfSite,
+): Promise<z.input<typeof GapsView>> {
   const values = { siteId, year };
   const kinds = Object.keys(gapQueries) as Kind[];
   const counts = await rows<{ kind: Kind; count: number }>(
-    kinds.map((kind) => `SELECT '${kind}' AS kind, count(*)::int AS count FROM (${gapQueries[kind](actor)}) g`).join(" UNION ALL "),
+    kinds
+      .map(
+        (kind) =>
+          `SELECT '${kind}' AS kind, count(*)::int AS count FROM (${gapQueries[kind](actor)}) g`,
+      )
+      .join(" UNION ALL "),
     values,
   );
   const months = await rows<z.input<typeof GapsView>["months"][number]>(
@@ -107,7 +122,11 @@ export async function yearGaps(actor: Actor, { siteId, year }: YearOfSite): Prom
 }
 
 /** The names behind one count. */
-export async function gapNames(actor: Actor, { siteId, year }: YearOfSite, kind: Kind): Promise<GapRow[]> {
+export async function gapNames(
+  actor: Actor,
+  { siteId, year }: YearOfSite,
+  kind: Kind,
+): Promise<GapRow[]> {
   return rows<GapRow>(
     `SELECT g.id, w.name, w.employee_number AS "employeeNumber", g.note, g.date::text AS date
      FROM (${gapQueries[kind](actor)}) g JOIN workers w ON w.id = g.id ORDER BY g.date DESC, w.employee_number LIMIT ${NAMES_LIMIT}`,

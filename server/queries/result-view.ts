@@ -5,7 +5,11 @@ import { row, rows } from "../lib/db";
 import { notFound } from "../lib/errors";
 import { type Actor, visible } from "../lib/policy";
 import { dayPolicy } from "../policies";
-import { DAY_FIGURES_COLUMNS, type DayFiguresRow, presentDayFigures } from "../presenters/day-figures";
+import {
+  DAY_FIGURES_COLUMNS,
+  type DayFiguresRow,
+  presentDayFigures,
+} from "../presenters/day-figures";
 import { type DayRefs, hydrateDays, ruleSetsOf } from "./day-inputs";
 
 interface Found extends DayFiguresRow {
@@ -23,14 +27,20 @@ const SELECT_RESULT = `SELECT ${DAY_FIGURES_COLUMNS("r")}, r.worker_id AS "worke
   FROM day_results r JOIN workers w ON w.id = r.worker_id LEFT JOIN days d ON d.worker_id = r.worker_id AND d.date = r.date`;
 
 export async function resultOfDay(actor: Actor, workerId: string, date: string) {
-  return view(await row<Found>(
-    `${SELECT_RESULT} WHERE r.id = d.current_result_id AND r.worker_id = :workerId AND r.date = :date AND ${visible(dayPolicy, actor, "r")}`,
-    { workerId, date },
-  ));
+  return view(
+    await row<Found>(
+      `${SELECT_RESULT} WHERE r.id = d.current_result_id AND r.worker_id = :workerId AND r.date = :date AND ${visible(dayPolicy, actor, "r")}`,
+      { workerId, date },
+    ),
+  );
 }
 
 export async function storedResult(actor: Actor, id: string) {
-  return view(await row<Found>(`${SELECT_RESULT} WHERE r.id = :id AND ${visible(dayPolicy, actor, "r")}`, { id }));
+  return view(
+    await row<Found>(`${SELECT_RESULT} WHERE r.id = :id AND ${visible(dayPolicy, actor, "r")}`, {
+      id,
+    }),
+  );
 }
 
 /** A result with its input built again from the revisions it names, and evaluated by the method version it names. */
@@ -42,23 +52,42 @@ async function view(found: Found | null): Promise<z.input<typeof ResultView>> {
   const input = isComputed ? (await hydrateDays([{ workerId, date, refs }]))[0]! : null;
   const method = METHODS[found.methodVersion];
   if (isComputed && !method) throw new Error(`method version ${found.methodVersion} is not known`);
-  const shifts = !isComputed ? [] : await rows<z.input<typeof ResultView>["shifts"][number]>(
-    `SELECT v.shift_id AS id, to_char(v.local_start, 'HH24:MI') AS "localStart", v.length_min AS "lengthMin", v.number AS revision, u.name AS "authorName", v.reason
+  const shifts = !isComputed
+    ? []
+    : await rows<z.input<typeof ResultView>["shifts"][number]>(
+        `SELECT v.shift_id AS id, to_char(v.local_start, 'HH24:MI') AS "localStart", v.length_min AS "lengthMin", v.number AS revision, u.name AS "authorName", v.reason
      FROM shift_revisions v LEFT JOIN users u ON u.id = v.author_id WHERE v.id = ANY (CAST(:ids AS uuid[])) ORDER BY v.local_start`,
-    { ids: `{${refs.shifts.map(({ revisionId }) => revisionId).join(",")}}` },
-  );
-  const levelIds = isComputed ? refs.shifts.flatMap(({ tasks }) => tasks.flatMap(({ levelId }) => (levelId ? [levelId] : []))) : [];
-  const modelIds = isComputed ? refs.shifts.flatMap(({ tasks }) => tasks.flatMap(({ use }) => [use?.inner, use?.outer].filter((id): id is string => Boolean(id)))) : [];
-  const sources = !isComputed ? [] : await rows<{ id: string; label: string; note: string | null }>(
-    `SELECT l.id, k.name || ', ' || l.effective_from AS label, nullif(l.source_note, '') AS note FROM task_levels l JOIN tasks k ON k.id = l.task_id WHERE l.id = ANY (CAST(:levelIds AS uuid[]))
+        { ids: `{${refs.shifts.map(({ revisionId }) => revisionId).join(",")}}` },
+      );
+  const levelIds = isComputed
+    ? refs.shifts.flatMap(({ tasks }) => tasks.flatMap(({ levelId }) => (levelId ? [levelId] : [])))
+    : [];
+  const modelIds = isComputed
+    ? refs.shifts.flatMap(({ tasks }) =>
+        tasks.flatMap(({ use }) =>
+          [use?.inner, use?.outer].filter((id): id is string => Boolean(id)),
+        ),
+      )
+    : [];
+  const sources = !isComputed
+    ? []
+    : await rows<{ id: string; label: string; note: string | null }>(
+        `SELECT l.id, k.name || ', ' || l.effective_from AS label, nullif(l.source_note, '') AS note FROM task_levels l JOIN tasks k ON k.id = l.task_id WHERE l.id = ANY (CAST(:levelIds AS uuid[]))
      UNION ALL SELECT p.id, m.name || ', ' || p.number, p.reason FROM protector_model_revisions p JOIN protector_models m ON m.id = p.model_id WHERE p.id = ANY (CAST(:modelIds AS uuid[]))`,
-    { levelIds: `{${levelIds.join(",")}}`, modelIds: `{${modelIds.join(",")}}` },
-  );
+        { levelIds: `{${levelIds.join(",")}}`, modelIds: `{${modelIds.join(",")}}` },
+      );
   const findings = await rows<{ id: string; kind: string; state: string }>(
     "SELECT f.id, f.kind, f.state FROM finding_evidence e JOIN findings f ON f.id = e.finding_id WHERE e.worker_id = :workerId AND e.date = :date ORDER BY f.opened_at",
     { workerId, date },
   );
-  const earlier = await rows<{ id: string; computedAt: Date; isCurrent: boolean; governingRuleSet: string; ruleSetVersion: number; methodVersion: number }>(
+  const earlier = await rows<{
+    id: string;
+    computedAt: Date;
+    isCurrent: boolean;
+    governingRuleSet: string;
+    ruleSetVersion: number;
+    methodVersion: number;
+  }>(
     `SELECT r.id, r.computed_at AS "computedAt", coalesce(d.current_result_id = r.id, FALSE) AS "isCurrent", r.governing_rule_set AS "governingRuleSet",
        r.governing_version AS "ruleSetVersion", r.method_version AS "methodVersion"
      FROM day_results r LEFT JOIN days d ON d.worker_id = r.worker_id AND d.date = r.date

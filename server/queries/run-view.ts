@@ -20,21 +20,41 @@ const SELECT_RUNS = `SELECT r.id, r.site_id AS "siteId", r.instrument_id AS "ins
   FROM runs r JOIN run_revisions v ON v.id = r.current_revision_id JOIN instruments i ON i.id = r.instrument_id
   LEFT JOIN workers w ON w.id = r.worker_id LEFT JOIN users u ON u.id = v.author_id`;
 
-const present = (actor: Actor, { recordedAt, ...run }: Found): RunView => ({ ...run, recordedAt: recordedAt.toISOString(), can: abilities(runPolicy, actor, run) });
+const present = (actor: Actor, { recordedAt, ...run }: Found): RunView => ({
+  ...run,
+  recordedAt: recordedAt.toISOString(),
+  can: abilities(runPolicy, actor, run),
+});
 
-export async function listRuns(actor: Actor, filter: z.output<typeof RunFilter>): Promise<z.input<typeof RunPage>> {
+export async function listRuns(
+  actor: Actor,
+  filter: z.output<typeof RunFilter>,
+): Promise<z.input<typeof RunPage>> {
   const cursor = decodeCursor(filter.cursor, 2);
   const conditions = [visible(runPolicy, actor, "r")];
   if (filter.workerId) conditions.push("r.worker_id = :workerId");
   if (filter.instrumentId) conditions.push("r.instrument_id = :instrumentId");
   if (filter.siteId) conditions.push("r.site_id = :siteId");
   if (filter.date) conditions.push("r.date = :date");
-  if (cursor) conditions.push("(r.date, r.id) < (CAST(:beforeDate AS date), CAST(:beforeId AS uuid))");
+  if (cursor)
+    conditions.push("(r.date, r.id) < (CAST(:beforeDate AS date), CAST(:beforeId AS uuid))");
   const found = await rows<Found>(
     `${SELECT_RUNS} WHERE ${conditions.join(" AND ")} ORDER BY r.date DESC, r.id DESC LIMIT :limit`,
-    { workerId: filter.workerId, instrumentId: filter.instrumentId, siteId: filter.siteId, date: filter.date, beforeDate: cursor?.[0] ?? null, beforeId: cursor?.[1] ?? null, limit: filter.limit + 1 },
+    {
+      workerId: filter.workerId,
+      instrumentId: filter.instrumentId,
+      siteId: filter.siteId,
+      date: filter.date,
+      beforeDate: cursor?.[0] ?? null,
+      beforeId: cursor?.[1] ?? null,
+      limit: filter.limit + 1,
+    },
   );
-  return pageFrom(found.map((one) => present(actor, one)), filter.limit, ({ date, id }) => [date, id]);
+  return pageFrom(
+    found.map((one) => present(actor, one)),
+    filter.limit,
+    ({ date, id }) => [date, id],
+  );
 }
 
 export async function runView(actor: Actor, run: Run): Promise<RunView> {

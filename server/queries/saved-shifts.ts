@@ -23,7 +23,10 @@ export interface SavedShiftRow {
 }
 
 /** Current shifts with their tasks; `condition` is on the head `s`. */
-export async function savedShifts(condition: string, replacements: Record<string, unknown>): Promise<SavedShiftRow[]> {
+export async function savedShifts(
+  condition: string,
+  replacements: Record<string, unknown>,
+): Promise<SavedShiftRow[]> {
   return rows<SavedShiftRow>(
     `SELECT s.id AS "shiftId", s.worker_id AS "workerId", s.crew_id AS "crewId", s.date::text AS date, s.time_zone AS "timeZone", s.starts_at AS "startsAt",
        s.revision, to_char(v.local_start, 'HH24:MI') AS "localStart", v.length_min AS "lengthMin", v.unaccounted_how AS how, v.unaccounted_level_db AS "quietDb",
@@ -42,7 +45,12 @@ export function presentSavedShift(row: SavedShiftRow): SavedShift {
     shiftId: row.shiftId,
     revision: row.revision,
     localStart: row.localStart,
-    whichHour: local.kind === "twice" ? (local.first.getTime() === row.startsAt.getTime() ? "first" : "second") : null,
+    whichHour:
+      local.kind === "twice"
+        ? local.first.getTime() === row.startsAt.getTime()
+          ? "first"
+          : "second"
+        : null,
     lengthMin: row.lengthMin,
     unaccounted: row.how === "quiet" ? { how: "quiet", levelDb: row.quietDb! } : { how: row.how },
     tasks: row.tasks,
@@ -72,25 +80,57 @@ interface GridRunRow extends MeterSettings {
 }
 
 /** Readings of personal runs on a date, by worker. */
-export async function readingsOfDay(workerIds: readonly string[], date: string): Promise<Map<string, GridRun[]>> {
-  const found = workerIds.length === 0 ? [] : await rows<GridRunRow>(
-    `SELECT r.worker_id AS "workerId", r.id AS "runId", r.revision AS "runRevision", g.id AS "readingId", r.instrument_id AS "instrumentId", i.kind, i.class,
+export async function readingsOfDay(
+  workerIds: readonly string[],
+  date: string,
+): Promise<Map<string, GridRun[]>> {
+  const found =
+    workerIds.length === 0
+      ? []
+      : await rows<GridRunRow>(
+          `SELECT r.worker_id AS "workerId", r.id AS "runId", r.revision AS "runRevision", g.id AS "readingId", r.instrument_id AS "instrumentId", i.kind, i.class,
        v.duration_min AS "durationMin", v.covers, v.kept_reason AS "keptReason", g.criterion_level_db AS "criterionLevelDb", g.exchange_rate_db AS "exchangeRateDb",
        g.threshold_db AS "thresholdDb", g.weighting, g.response, g.dose_pct AS "dosePct", g.average_db AS "averageDb", g.lceq_db AS "lceqDb",
        g.las_max_db AS "lasMaxDb", g.peak_db AS "peakDb", g.peak_weighting AS "peakWeighting"
      FROM runs r JOIN run_revisions v ON v.id = r.current_revision_id JOIN readings g ON g.run_revision_id = v.id JOIN instruments i ON i.id = r.instrument_id
      WHERE r.worker_id = ANY (CAST(:workerIds AS uuid[])) AND r.date = :date AND NOT r.is_void ORDER BY r.id, g.position`,
-    { workerIds: `{${workerIds.join(",")}}`, date },
-  );
+          { workerIds: `{${workerIds.join(",")}}`, date },
+        );
   const byWorker = new Map<string, GridRun[]>();
   for (const row of found) {
-    const { criterionLevelDb, exchangeRateDb, thresholdDb, weighting, response, peakDb, peakWeighting } = row;
+    const {
+      criterionLevelDb,
+      exchangeRateDb,
+      thresholdDb,
+      weighting,
+      response,
+      peakDb,
+      peakWeighting,
+    } = row;
     const reading: GridRun = {
-      runId: row.runId, runRevision: row.runRevision, readingId: row.readingId, instrumentId: row.instrumentId,
-      instrumentClass: instrumentClass(row.kind, row.class), durationMin: row.durationMin, covers: row.covers, keptReason: row.keptReason,
-      settings: { criterionLevelDb, exchangeRateDb: exchangeRateDb as 3 | 4 | 5, thresholdDb, weighting, response },
-      dosePct: row.dosePct, averageDb: row.averageDb, lceqDb: row.lceqDb, lasMaxDb: row.lasMaxDb,
-      peak: peakDb === null || peakWeighting === null ? null : { levelDb: peakDb, weighting: peakWeighting },
+      runId: row.runId,
+      runRevision: row.runRevision,
+      readingId: row.readingId,
+      instrumentId: row.instrumentId,
+      instrumentClass: instrumentClass(row.kind, row.class),
+      durationMin: row.durationMin,
+      covers: row.covers,
+      keptReason: row.keptReason,
+      settings: {
+        criterionLevelDb,
+        exchangeRateDb: exchangeRateDb as 3 | 4 | 5,
+        thresholdDb,
+        weighting,
+        response,
+      },
+      dosePct: row.dosePct,
+      averageDb: row.averageDb,
+      lceqDb: row.lceqDb,
+      lasMaxDb: row.lasMaxDb,
+      peak:
+        peakDb === null || peakWeighting === null
+          ? null
+          : { levelDb: peakDb, weighting: peakWeighting },
     };
     byWorker.set(row.workerId, [...(byWorker.get(row.workerId) ?? []), reading]);
   }

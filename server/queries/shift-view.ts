@@ -23,7 +23,9 @@ interface RevisionRow {
 
 /** A shift as it stands and every revision before it. */
 export async function shiftView(actor: Actor, shift: Shift): Promise<z.input<typeof ShiftView>> {
-  const worker = await row<{ name: string }>("SELECT name FROM workers WHERE id = :id", { id: shift.workerId });
+  const worker = await row<{ name: string }>("SELECT name FROM workers WHERE id = :id", {
+    id: shift.workerId,
+  });
   const revisions = await rows<RevisionRow>(
     `SELECT v.number, to_char(v.local_start, 'HH24:MI') AS "localStart", v.reason, u.name AS "authorName", v.created_at AS at, v.length_min AS "lengthMin",
        v.unaccounted_how AS how, v.unaccounted_level_db AS "quietDb", v.note, v.is_void AS "isVoid",
@@ -38,9 +40,15 @@ export async function shiftView(actor: Actor, shift: Shift): Promise<z.input<typ
     shiftId: shift.id,
     revision: shift.revision,
     localStart: current.localStart,
-    whichHour: local.kind === "twice" ? (local.first.getTime() === shift.startsAt.getTime() ? "first" : "second") : null,
+    whichHour:
+      local.kind === "twice"
+        ? local.first.getTime() === shift.startsAt.getTime()
+          ? "first"
+          : "second"
+        : null,
     lengthMin: current.lengthMin,
-    unaccounted: current.how === "quiet" ? { how: "quiet", levelDb: current.quietDb! } : { how: current.how },
+    unaccounted:
+      current.how === "quiet" ? { how: "quiet", levelDb: current.quietDb! } : { how: current.how },
     tasks: current.tasks,
     note: current.note,
     authorName: current.authorName,
@@ -51,7 +59,15 @@ export async function shiftView(actor: Actor, shift: Shift): Promise<z.input<typ
     timeZone: shift.timeZone,
     crewId: shift.crewId,
     isVoid: shift.isVoid,
-    revisions: revisions.map(({ number, reason, authorName, at, lengthMin, tasks, isVoid }) => ({ number, reason, authorName, at: at.toISOString(), lengthMin, tasks, isVoid })),
+    revisions: revisions.map(({ number, reason, authorName, at, lengthMin, tasks, isVoid }) => ({
+      number,
+      reason,
+      authorName,
+      at: at.toISOString(),
+      lengthMin,
+      tasks,
+      isVoid,
+    })),
     can: abilities(shiftPolicy, actor, shift),
   };
 }

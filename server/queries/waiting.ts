@@ -3,7 +3,7 @@ import type { WaitingView } from "../../shared/schemas/waiting";
 import { localDate } from "../../shared/time/zone";
 import { rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
-import { noticePolicy, programmePolicy, sitePolicy, crewPolicy } from "../policies";
+import { crewPolicy, noticePolicy, programmePolicy, sitePolicy } from "../policies";
 import { findNotices, summarize } from "./entry-notices";
 import { listFindings } from "./finding-view";
 
@@ -21,12 +21,18 @@ interface CrewRow {
 }
 
 /** The safety officer's start page: what needs a person, how far the crews' days are entered, what goes out, what is due. */
-export async function waitingFor(actor: Actor, siteId: string | undefined): Promise<z.input<typeof WaitingView>> {
+export async function waitingFor(
+  actor: Actor,
+  siteId: string | undefined,
+): Promise<z.input<typeof WaitingView>> {
   const sites = await rows<{ id: string; timeZone: string }>(
     `SELECT s.id, s.time_zone AS "timeZone" FROM sites s WHERE ${visible(sitePolicy, actor, "s")} ${siteId ? "AND s.id = :siteId" : ""}`,
     { siteId },
   );
-  const days = sites.map(({ id, timeZone }) => ({ siteId: id, date: localDate(new Date(), timeZone) }));
+  const days = sites.map(({ id, timeZone }) => ({
+    siteId: id,
+    date: localDate(new Date(), timeZone),
+  }));
   const crews = await rows<CrewRow>(
     `SELECT c.id, c.name, c.site_id AS "siteId", s.time_zone AS "timeZone", x.date::text AS date, to_char(c.usual_start, 'HH24:MI') AS start, c.usual_length_min AS "lengthMin",
        (SELECT count(*)::int FROM crew_memberships m JOIN workers w ON w.id = m.worker_id
@@ -39,9 +45,13 @@ export async function waitingFor(actor: Actor, siteId: string | undefined): Prom
   );
   const findings = await listFindings(actor, { state: "open", siteId, limit: 100 });
   const ofSite = siteId ? "n.site_id = :siteId AND" : "";
-  const outgoing = await findNotices(`${ofSite} n.state IN ('waiting', 'held') AND n.last_error IS NULL AND ${visible(noticePolicy, actor, "n")}`, { siteId });
+  const outgoing = await findNotices(
+    `${ofSite} n.state IN ('waiting', 'held') AND n.last_error IS NULL AND ${visible(noticePolicy, actor, "n")}`,
+    { siteId },
+  );
   const byEntry = new Map<string, typeof outgoing>();
-  for (const notice of outgoing) byEntry.set(notice.entryId, [...(byEntry.get(notice.entryId) ?? []), notice]);
+  for (const notice of outgoing)
+    byEntry.set(notice.entryId, [...(byEntry.get(notice.entryId) ?? []), notice]);
   const troubled = await findNotices(
     `${ofSite} (n.state IN ('failed', 'possibly-sent') OR (n.state = 'waiting' AND n.last_error IS NOT NULL)) AND n.created_at > now() - interval '30 days' AND ${visible(noticePolicy, actor, "n")}`,
     { siteId },

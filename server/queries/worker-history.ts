@@ -4,10 +4,18 @@ import { decodeCursor, pageFrom } from "../lib/cursor";
 import { rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
 import { dayPolicy } from "../policies";
-import { DAY_FIGURES_COLUMNS, type DayFiguresRow, presentDayFigures } from "../presenters/day-figures";
+import {
+  DAY_FIGURES_COLUMNS,
+  type DayFiguresRow,
+  presentDayFigures,
+} from "../presenters/day-figures";
 
 /** A worker's days with their current results, latest first, as far as the actor may see them. */
-export async function workerHistory(actor: Actor, workerId: string, filter: z.output<typeof HistoryFilter>): Promise<z.input<typeof HistoryPage>> {
+export async function workerHistory(
+  actor: Actor,
+  workerId: string,
+  filter: z.output<typeof HistoryFilter>,
+): Promise<z.input<typeof HistoryPage>> {
   const before = decodeCursor(filter.cursor, 1)?.[0];
   const conditions = ["d.worker_id = :workerId", visible(dayPolicy, actor, "d")];
   if (filter.from) conditions.push("d.date >= :from");
@@ -18,5 +26,13 @@ export async function workerHistory(actor: Actor, workerId: string, filter: z.ou
      FROM days d JOIN day_results r ON r.id = d.current_result_id WHERE ${conditions.join(" AND ")} ORDER BY d.date DESC LIMIT :limit`,
     { workerId, from: filter.from, to: filter.to, before, limit: filter.limit + 1 },
   );
-  return pageFrom(found.map((row) => ({ ...presentDayFigures(row), shiftMin: row.shiftMin, isStale: row.isStale })), filter.limit, ({ date }) => [date]);
+  return pageFrom(
+    found.map((row) => ({
+      ...presentDayFigures(row),
+      shiftMin: row.shiftMin,
+      isStale: row.isStale,
+    })),
+    filter.limit,
+    ({ date }) => [date],
+  );
 }

@@ -1,5 +1,13 @@
 import { IdParams } from "../../shared/schemas/common";
-import { DayGridView, DayQuery, DaySaveInput, DaySaveView, ShiftCorrection, ShiftView, ShiftVoid } from "../../shared/schemas/shift";
+import {
+  DayGridView,
+  DayQuery,
+  DaySaveInput,
+  DaySaveView,
+  ShiftCorrection,
+  ShiftView,
+  ShiftVoid,
+} from "../../shared/schemas/shift";
 import { correctShift } from "../commands/correct-shift";
 import { saveDay } from "../commands/save-day";
 import { endpoint } from "../lib/endpoint";
@@ -11,39 +19,85 @@ import { dayGrid } from "../queries/day-grid";
 import { shiftView } from "../queries/shift-view";
 
 export function defineDayEntryRoutes(): void {
-  endpoint.get("/crews/:id/day", { summary: "What a crew's day is entered with", may: may.officer, params: IdParams, query: DayQuery, reply: DayGridView },
+  endpoint.get(
+    "/crews/:id/day",
+    {
+      summary: "What a crew's day is entered with",
+      may: may.officer,
+      params: IdParams,
+      query: DayQuery,
+      reply: DayGridView,
+    },
     async ({ actor, params, query }) => {
       const crew = await findVisible(Crew, crewPolicy, params.id, actor);
       authorize(crewPolicy, actor, "enterDay", crew);
       return dayGrid(crew, query.date);
-    });
+    },
+  );
 
-  endpoint.post("/crews/:id/day", { summary: "Save the rows of a crew's day that stand", may: may.officer, params: IdParams, body: DaySaveInput, reply: DaySaveView },
+  endpoint.post(
+    "/crews/:id/day",
+    {
+      summary: "Save the rows of a crew's day that stand",
+      may: may.officer,
+      params: IdParams,
+      body: DaySaveInput,
+      reply: DaySaveView,
+    },
     async ({ actor, params, body }) => {
       const crew = await findVisible(Crew, crewPolicy, params.id, actor);
       authorize(crewPolicy, actor, "enterDay", crew);
       return saveDay(actor, crew, body.date, body.rows);
-    });
+    },
+  );
 
-  endpoint.get("/shifts/:id", { summary: "A shift with its revisions", may: may.readDays, params: IdParams, reply: ShiftView },
+  endpoint.get(
+    "/shifts/:id",
+    {
+      summary: "A shift with its revisions",
+      may: may.readDays,
+      params: IdParams,
+      reply: ShiftView,
+    },
     async ({ actor, params }) => {
       const shift = await findVisible(Shift, shiftPolicy, params.id, actor);
       return shiftView(actor, shift);
-    });
+    },
+  );
 
-  endpoint.put("/shifts/:id", { summary: "Correct a shift with a reason", may: may.officer, params: IdParams, body: ShiftCorrection, reply: ShiftView, needsRevision: true },
+  endpoint.put(
+    "/shifts/:id",
+    {
+      summary: "Correct a shift with a reason",
+      may: may.officer,
+      params: IdParams,
+      body: ShiftCorrection,
+      reply: ShiftView,
+      needsRevision: true,
+    },
     async ({ actor, params, body, ifMatch }) => {
       const shift = await findVisible(Shift, shiftPolicy, params.id, actor, { lock: true });
       authorize(shiftPolicy, actor, "correct", shift);
       await correctShift(actor, shift, { ...body, isVoid: false }, ifMatch);
       return shiftView(actor, await shift.reload());
-    });
+    },
+  );
 
-  endpoint.delete("/shifts/:id", { summary: "Strike a shift that was never worked, with a reason", may: may.officer, params: IdParams, body: ShiftVoid, reply: ShiftView, needsRevision: true },
+  endpoint.delete(
+    "/shifts/:id",
+    {
+      summary: "Strike a shift that was never worked, with a reason",
+      may: may.officer,
+      params: IdParams,
+      body: ShiftVoid,
+      reply: ShiftView,
+      needsRevision: true,
+    },
     async ({ actor, params, body, ifMatch }) => {
       const shift = await findVisible(Shift, shiftPolicy, params.id, actor, { lock: true });
       authorize(shiftPolicy, actor, "correct", shift);
       await correctShift(actor, shift, { isVoid: true, reason: body.reason }, ifMatch);
       return shiftView(actor, await shift.reload());
-    });
+    },
+  );
 }

@@ -14,21 +14,63 @@ import { waitingFor } from "../queries/waiting";
 import { workerHistory } from "../queries/worker-history";
 
 export function defineDayRoutes(): void {
-  endpoint.get("/waiting", { summary: "What needs a person, most urgent first", may: may.officer, query: WaitingQuery, reply: WaitingView },
-    ({ actor, query }) => waitingFor(actor, query.siteId));
+  endpoint.get(
+    "/waiting",
+    {
+      summary: "What needs a person, most urgent first",
+      may: may.officer,
+      query: WaitingQuery,
+      reply: WaitingView,
+    },
+    ({ actor, query }) => waitingFor(actor, query.siteId),
+  );
 
-  endpoint.get("/crews/:id/sheet", { summary: "A crew's expected day and last shift", may: may.readCrews, params: IdParams, reply: CrewSheetView },
-    async ({ actor, params }) => crewSheet(actor, await findVisible(Crew, crewPolicy, params.id, actor)));
+  endpoint.get(
+    "/crews/:id/sheet",
+    {
+      summary: "A crew's expected day and last shift",
+      may: may.readCrews,
+      params: IdParams,
+      reply: CrewSheetView,
+    },
+    async ({ actor, params }) =>
+      crewSheet(actor, await findVisible(Crew, crewPolicy, params.id, actor)),
+  );
 
-  endpoint.get("/workers/:id/days", { summary: "A worker's days, latest first", may: may.readDays, params: IdParams, query: HistoryFilter, reply: HistoryPage },
+  endpoint.get(
+    "/workers/:id/days",
+    {
+      summary: "A worker's days, latest first",
+      may: may.readDays,
+      params: IdParams,
+      query: HistoryFilter,
+      reply: HistoryPage,
+    },
     async ({ actor, params, query }) => {
       const worker = await findVisible(Worker, workerPolicy, params.id, actor);
       return workerHistory(actor, worker.id, query);
-    });
+    },
+  );
 
-  endpoint.get("/workers/:id/days/:date", { summary: "A day's current result with all that its working is drawn from", may: may.readDays, params: DayParams, reply: ResultView },
-    ({ actor, params }) => resultOfDay(actor, params.id, params.date));
+  endpoint.get(
+    "/workers/:id/days/:date",
+    {
+      summary: "A day's current result with all that its working is drawn from",
+      may: may.readDays,
+      params: DayParams,
+      reply: ResultView,
+    },
+    ({ actor, params }) => resultOfDay(actor, params.id, params.date),
+  );
 
-  endpoint.get("/results/:id", { summary: "Any result ever computed", may: may.readDays, params: z.object({ id: z.uuid() }), reply: ResultView },
-    ({ actor, params }) => storedResult(actor, params.id));
+  endpoint.get(
+    "/results/:id",
+    {
+      summary: "Any result ever computed",
+      may: may.readDays,
+      params: z.object({ id: z.uuid() }),
+      reply: ResultView,
+    },
+    ({ actor, params }) => storedResult(actor, params.id),
+  );
 }

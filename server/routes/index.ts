@@ -1,12 +1,12 @@
 import type { Config } from "../config";
-import { defineEvaluateRoutes } from "./evaluate";
-import { defineExportRoutes } from "./exports";
 import { defineAreaRoutes } from "./areas";
 import { defineAssignmentRoutes } from "./assignments";
 import { defineAuditRoutes } from "./audit-events";
 import { defineCrewRoutes } from "./crews";
 import { defineDayEntryRoutes } from "./day-entry";
 import { defineDayRoutes } from "./days";
+import { defineEvaluateRoutes } from "./evaluate";
+import { defineExportRoutes } from "./exports";
 import { defineFindingRoutes } from "./findings";
 import { defineInstrumentRoutes } from "./instruments";
 import { defineJobRoutes } from "./jobs";

@@ -3,6 +3,7 @@ import { IdParams } from "../../shared/schemas/common";
 import { EntryNotices, NoticeText } from "../../shared/schemas/notice";
 import { handleNotices } from "../commands/handle-notice";
 import type { Config } from "../config";
+import { noticeMail } from "../jobs/send-notice";
 import { rows } from "../lib/db";
 import { endpoint } from "../lib/endpoint";
 import { notFound } from "../lib/errors";
@@ -10,7 +11,6 @@ import { type Actor, authorize, findVisible, visible } from "../lib/policy";
 import { Notice } from "../models/finding";
 import { may, noticePolicy } from "../policies";
 import { entryNotices } from "../queries/entry-notices";
-import { noticeMail } from "../jobs/send-notice";
 
 const EntryParams = z.object({ entryId: z.uuid() });
 const EntryAction = z.object({ action: z.enum(["hold", "send-now"]) });
@@ -27,22 +27,53 @@ async function noticesOf(actor: Actor, entryId: string): Promise<string[]> {
 }
 
 export function defineNoticeRoutes(config: Pick<Config<"web">, "PUBLIC_URL">): void {
-  endpoint.get("/entries/:entryId/notices", { summary: "Whom an entry will tell", may: may.officer, params: EntryParams, reply: EntryNotices },
+  endpoint.get(
+    "/entries/:entryId/notices",
+    {
+      summary: "Whom an entry will tell",
+      may: may.officer,
+      params: EntryParams,
+      reply: EntryNotices,
+    },
     async ({ actor, params }) => {
       await noticesOf(actor, params.entryId);
       return entryNotices(params.entryId);
-    });
+    },
+  );
 
-  endpoint.post("/entries/:entryId/notices/actions", { summary: "Hold or send what an entry will tell", may: may.officer, params: EntryParams, body: EntryAction, reply: EntryNotices },
+  endpoint.post(
+    "/entries/:entryId/notices/actions",
+    {
+      summary: "Hold or send what an entry will tell",
+      may: may.officer,
+      params: EntryParams,
+      body: EntryAction,
+      reply: EntryNotices,
+    },
     async ({ actor, params, body }) => {
       await handleNotices(actor, await noticesOf(actor, params.entryId), body.action);
       return entryNotices(params.entryId);
-    });
+    },
+  );
 
-  endpoint.get("/notices/:id", { summary: "A notice as it was sent, or as it would read now", may: may.readDays, params: IdParams, reply: NoticeText },
+  endpoint.get(
+    "/notices/:id",
+    {
+      summary: "A notice as it was sent, or as it would read now",
+      may: may.readDays,
+      params: IdParams,
+      reply: NoticeText,
+    },
     async ({ actor, params }) => {
       const notice = await findVisible(Notice, noticePolicy, params.id, actor);
-      if (notice.subject !== null) return { subject: notice.subject, text: notice.bodyText ?? "", html: notice.bodyHtml ?? "", isSent: true };
+      if (notice.subject !== null)
+        return {
+          subject: notice.subject,
+          text: notice.bodyText ?? "",
+          html: notice.bodyHtml ?? "",
+          isSent: true,
+        };
       return { ...(await noticeMail(notice.id, config.PUBLIC_URL)), isSent: false };
-    });
+    },
+  );
 }

@@ -2,8 +2,8 @@ import { randomUUID } from "node:crypto";
 import { IdParams } from "../../shared/schemas/common";
 import { RunCorrection, RunFilter, RunInput, RunPage, RunView } from "../../shared/schemas/run";
 import { localDate } from "../../shared/time/zone";
-import { correctRun, recordRun } from "../commands/record-run";
 import { recomputeDays } from "../commands/recompute-days";
+import { correctRun, recordRun } from "../commands/record-run";
 import { scheduleNotices } from "../commands/schedule-notices";
 import { execute, row } from "../lib/db";
 import { endpoint } from "../lib/endpoint";
@@ -16,41 +16,87 @@ import { may, programmePolicy, runPolicy, shiftPolicy, workerPolicy } from "../p
 import { listRuns, runView } from "../queries/run-view";
 
 /** The day that a run belongs to, computed anew where a shift is there already; otherwise it waits for one. */
-async function recomputeDayOf(actor: Actor, siteId: string, workerId: string, date: string, entryId: string): Promise<void> {
-  await execute("UPDATE days SET is_stale = TRUE WHERE worker_id = $1 AND date = $2::date", [workerId, date]);
+async function recomputeDayOf(
+  actor: Actor,
+  siteId: string,
+  workerId: string,
+  date: string,
+  entryId: string,
+): Promise<void> {
+  await execute("UPDATE days SET is_stale = TRUE WHERE worker_id = $1 AND date = $2::date", [
+    workerId,
+    date,
+  ]);
   const recomputed = await recomputeDays(actor.organizationId, [{ workerId, date }]);
-  await scheduleNotices({ organizationId: actor.organizationId, author: actor, entryId, siteId, recomputed });
+  await scheduleNotices({
+    organizationId: actor.organizationId,
+    author: actor,
+    entryId,
+    siteId,
+    recomputed,
+  });
 }
 
 export function defineRunRoutes(): void {
-  endpoint.get("/runs", { summary: "Runs, latest first", may: may.readCrews, query: RunFilter, reply: RunPage }, ({ actor, query }) => listRuns(actor, query));
+  endpoint.get(
+    "/runs",
+    { summary: "Runs, latest first", may: may.readCrews, query: RunFilter, reply: RunPage },
+    ({ actor, query }) => listRuns(actor, query),
+  );
 
-  endpoint.get("/runs/:id", { summary: "A run with its readings", may: may.readDays, params: IdParams, reply: RunView },
-    async ({ actor, params }) => runView(actor, await findVisible(Run, runPolicy, params.id, actor)));
+  endpoint.get(
+    "/runs/:id",
+    { summary: "A run with its readings", may: may.readDays, params: IdParams, reply: RunView },
+    async ({ actor, params }) =>
+      runView(actor, await findVisible(Run, runPolicy, params.id, actor)),
+  );
 
-  endpoint.post("/runs", { summary: "Record a run with its readings", may: may.officer, body: RunInput, reply: RunView },
+  endpoint.post(
+    "/runs",
+    { summary: "Record a run with its readings", may: may.officer, body: RunInput, reply: RunView },
     async ({ actor, body }) => {
       const worker = await findVisible(Worker, workerPolicy, body.workerId, actor);
       const instrument = await findVisible(Instrument, programmePolicy, body.instrumentId, actor);
       if (!actor.isAt(worker.siteId, "officer")) throw forbidden();
       if (body.shiftId) {
         const shift = await findVisible(Shift, shiftPolicy, body.shiftId, actor);
-        if (shift.workerId !== worker.id || shift.date !== body.date) throw unprocessable([issue(["shiftId"], "shift-of-another-day")]);
+        if (shift.workerId !== worker.id || shift.date !== body.date)
+          throw unprocessable([issue(["shiftId"], "shift-of-another-day")]);
       }
-      const site = await row<{ timeZone: string }>(`SELECT time_zone AS "timeZone" FROM sites WHERE id = :id`, { id: worker.siteId });
+      const site = await row<{ timeZone: string }>(
+        `SELECT time_zone AS "timeZone" FROM sites WHERE id = :id`,
+        { id: worker.siteId },
+      );
       const today = localDate(new Date(), site?.timeZone ?? "UTC");
       if (body.date > today) throw unprocessable([issue(["date"], "in-the-future", { today })]);
-      if (body.date < worker.hiredOn) throw unprocessable([issue(["date"], "before-hire", { hiredOn: worker.hiredOn })]);
-      if (instrument.calibrationDueOn !== null && instrument.calibrationDueOn < body.date && body.keptReason === null) {
-        throw unprocessable([issue(["keptReason"], "calibration-out-of-date", { dueOn: instrument.calibrationDueOn })]);
+      if (body.date < worker.hiredOn)
+        throw unprocessable([issue(["date"], "before-hire", { hiredOn: worker.hiredOn })]);
+      if (
+        instrument.calibrationDueOn !== null &&
+        instrument.calibrationDueOn < body.date &&
+        body.keptReason === null
+      ) {
+        throw unprocessable([
+          issue(["keptReason"], "calibration-out-of-date", { dueOn: instrument.calibrationDueOn }),
+        ]);
       }
       const entryId = randomUUID();
       const id = await recordRun(actor, worker.siteId, body, entryId);
       await recomputeDayOf(actor, worker.siteId, worker.id, body.date, entryId);
       return runView(actor, await findVisible(Run, runPolicy, id, actor));
-    });
+    },
+  );
 
-  endpoint.put("/runs/:id", { summary: "Correct or strike a run with a reason", may: may.officer, params: IdParams, body: RunCorrection, reply: RunView, needsRevision: true },
+  endpoint.put(
+    "/runs/:id",
+    {
+      summary: "Correct or strike a run with a reason",
+      may: may.officer,
+      params: IdParams,
+      body: RunCorrection,
+      reply: RunView,
+      needsRevision: true,
+    },
     async ({ actor, params, body, ifMatch }) => {
       const run = await findVisible(Run, runPolicy, params.id, actor, { lock: true });
       authorize(runPolicy, actor, "correct", run);
@@ -59,5 +105,6 @@ export function defineRunRoutes(): void {
       await correctRun(actor, run, body, entryId);
       if (run.workerId) await recomputeDayOf(actor, run.siteId, run.workerId, run.date, entryId);
       return runView(actor, await run.reload());
-    });
+    },
+  );
 }

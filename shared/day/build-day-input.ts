@@ -1,4 +1,13 @@
-import type { DayInput, Protection, ProtectorData, ReadingInput, TaskLevel, TimedTask, Unaccounted, Zone } from "../acoustics/types";
+import type {
+  DayInput,
+  Protection,
+  ProtectorData,
+  ReadingInput,
+  TaskLevel,
+  TimedTask,
+  Unaccounted,
+  Zone,
+} from "../acoustics/types";
 
 /** A task as day entry knows it. */
 export interface KnownTask {
@@ -39,18 +48,34 @@ export interface DayContext {
 }
 
 /** The assignment that holds in a task: one for the task itself before one for its area before one for everywhere. */
-export function assignmentFor(task: Pick<KnownTask, "id" | "areaId">, assignments: readonly KnownAssignment[]): KnownAssignment | null {
-  return assignments.find(({ taskId }) => taskId === task.id)
-    ?? assignments.find(({ areaId }) => areaId !== null && areaId === task.areaId)
-    ?? assignments.find(({ taskId, areaId }) => taskId === null && areaId === null)
-    ?? null;
+export function assignmentFor(
+  task: Pick<KnownTask, "id" | "areaId">,
+  assignments: readonly KnownAssignment[],
+): KnownAssignment | null {
+  return (
+    assignments.find(({ taskId }) => taskId === task.id) ??
+    assignments.find(({ areaId }) => areaId !== null && areaId === task.areaId) ??
+    assignments.find(({ taskId, areaId }) => taskId === null && areaId === null) ??
+    null
+  );
 }
 
-function protectionOf(assignment: KnownAssignment | null, models: DayContext["models"]): Protection | null {
+function protectionOf(
+  assignment: KnownAssignment | null,
+  models: DayContext["models"],
+): Protection | null {
   const inner = assignment && models.get(assignment.innerModelId);
   if (!assignment || !inner) return null;
-  const outer = assignment.outerModelId === null ? null : (models.get(assignment.outerModelId) ?? null);
-  return { assignmentId: assignment.id, inner, outer, combinationBands: null, ownFitDb: null, activeCheckPassed: false };
+  const outer =
+    assignment.outerModelId === null ? null : (models.get(assignment.outerModelId) ?? null);
+  return {
+    assignmentId: assignment.id,
+    inner,
+    outer,
+    combinationBands: null,
+    ownFitDb: null,
+    activeCheckPassed: false,
+  };
 }
 
 /** A day that is not stored yet, as the engine takes it: for the preview while typing and for what is expected. */
@@ -76,17 +101,19 @@ export function buildDayInput(
       tasks: entered.flatMap((entry): TimedTask[] => {
         const task = tasks.get(entry.taskId);
         if (!task) return [];
-        return [{
-          id: `${id}:${task.id}`,
-          taskId: task.id,
-          name: task.name,
-          durationMin: entry.durationMin,
-          level: task.level,
-          zone: task.zone,
-          protection: protectionOf(assignmentFor(task, assignments), models),
-          wornPct: entry.wornPct,
-          wornIsShiftWide: entry.wornIsShiftWide,
-        }];
+        return [
+          {
+            id: `${id}:${task.id}`,
+            taskId: task.id,
+            name: task.name,
+            durationMin: entry.durationMin,
+            level: task.level,
+            zone: task.zone,
+            protection: protectionOf(assignmentFor(task, assignments), models),
+            wornPct: entry.wornPct,
+            wornIsShiftWide: entry.wornIsShiftWide,
+          },
+        ];
       }),
     })),
   };

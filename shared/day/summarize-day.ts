@@ -1,4 +1,10 @@
-import type { CriterionResult, DayEvaluation, DayInput, RuleSetVersion, Verdict } from "../acoustics/types";
+import type {
+  CriterionResult,
+  DayEvaluation,
+  DayInput,
+  RuleSetVersion,
+  Verdict,
+} from "../acoustics/types";
 import type { DayFigures } from "../schemas/finding";
 
 /** The one word for several criteria: what is certain and worst, before what is open, before what is fine. */
@@ -17,14 +23,21 @@ export type DaySummary = Omit<DayFigures, "resultId" | "origin"> & {
 };
 
 /** What a list row, a strip and a stored result need of an evaluated day. */
-export function summarizeDay(input: DayInput, evaluation: DayEvaluation, governing: RuleSetVersion): DaySummary {
+export function summarizeDay(
+  input: DayInput,
+  evaluation: DayEvaluation,
+  governing: RuleSetVersion,
+): DaySummary {
   const own = evaluation.criteria.filter(({ ruleSetKey }) => ruleSetKey === governing.key);
-  const quantityOf = ({ criterionId }: CriterionResult) => governing.criteria.find(({ id }) => id === criterionId)?.quantity;
+  const quantityOf = ({ criterionId }: CriterionResult) =>
+    governing.criteria.find(({ id }) => id === criterionId)?.quantity;
   const levels = own.filter((result) => levelQuantities.has(quantityOf(result)));
   const outside = levels.filter(({ judged }) => judged === "without-protection");
   const atEar = levels.filter(({ judged }) => judged === "at-the-ear");
   const tasks = input.shifts.flatMap((shift) => shift.tasks);
-  const deciding = evaluation.tasks.find(({ timedTaskId }) => timedTaskId === evaluation.decidingTaskId);
+  const deciding = evaluation.tasks.find(
+    ({ timedTaskId }) => timedTaskId === evaluation.decidingTaskId,
+  );
   const decidingTask = tasks.find(({ id }) => id === evaluation.decidingTaskId);
   return {
     date: evaluation.date,
@@ -41,10 +54,21 @@ export function summarizeDay(input: DayInput, evaluation: DayEvaluation, governi
     decidingTaskId: decidingTask?.taskId ?? null,
     decidingTaskName: decidingTask?.name ?? null,
     hasProtector: evaluation.tasks.some(({ isWorn }) => isWorn) ? "yes" : "no",
-    reason: evaluation.protectorReason ?? atEar.find(({ reason }) => reason)?.reason ?? outside.find(({ reason }) => reason)?.reason ?? null,
+    reason:
+      evaluation.protectorReason ??
+      atEar.find(({ reason }) => reason)?.reason ??
+      outside.find(({ reason }) => reason)?.reason ??
+      null,
     ruleSetKey: governing.key,
     ruleSetVersion: governing.version,
-    governingCriteria: own.map(({ criterionId, verdict, isClear, levelDb, dosePct, reason }) => ({ criterionId, verdict, isClear, levelDb, dosePct, reason })),
+    governingCriteria: own.map(({ criterionId, verdict, isClear, levelDb, dosePct, reason }) => ({
+      criterionId,
+      verdict,
+      isClear,
+      levelDb,
+      dosePct,
+      reason,
+    })),
     dosePct: outside.find(({ dosePct }) => dosePct !== null)?.dosePct ?? null,
   };
 }

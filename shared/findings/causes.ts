@@ -1,4 +1,13 @@
-import type { CriterionResult, DayEvaluation, DayInput, Protection, RuleSetVersion, TaskAtEar, TimedTask } from "../acoustics/types";
+import type {
+  Criterion,
+  CriterionResult,
+  DayEvaluation,
+  DayInput,
+  Protection,
+  RuleSetVersion,
+  TaskAtEar,
+  TimedTask,
+} from "../acoustics/types";
 import { actionValueDb } from "../rule-sets";
 import type { FindingKind } from "../schemas/finding";
 
@@ -18,8 +27,10 @@ export const LARGE_GAP_DB = 5;
 const UNACCOUNTED_FROM_MIN = 1;
 
 /** Two tasks with the same devices are one use, however the assignment is worded. */
-export const useKeyOf = ({ inner, outer }: Protection): string => [inner.modelId, outer?.modelId].filter(Boolean).join("+");
-export const nameOf = ({ inner, outer }: Protection): string => [inner.name, outer?.name].filter(Boolean).join(" + ");
+export const keyOfUse = ({ inner, outer }: Protection): string =>
+  [inner.modelId, outer?.modelId].filter(Boolean).join("+");
+export const nameOf = ({ inner, outer }: Protection): string =>
+  [inner.name, outer?.name].filter(Boolean).join(" + ");
 
 interface Seen {
   task: TimedTask;
@@ -27,31 +38,53 @@ interface Seen {
 }
 
 /** The causes in one evaluated day, from the governing rule set only. */
-export function findCauses(input: DayInput, evaluation: DayEvaluation, governing: RuleSetVersion): Cause[] {
+export function findCauses(
+  input: DayInput,
+  evaluation: DayEvaluation,
+  governing: RuleSetVersion,
+): Cause[] {
   const causes: Cause[] = [];
-  const add = (kind: FindingKind, facts: Cause["facts"] = {}, more: Partial<Omit<Cause, "kind" | "facts">> = {}) =>
-    causes.push({ kind, concerns: "worker", criterion: "", useKey: "", facts, ...more });
+  const add = (
+    kind: FindingKind,
+    facts: Cause["facts"] = {},
+    more: Partial<Omit<Cause, "kind" | "facts">> = {},
+  ) => causes.push({ kind, concerns: "worker", criterion: "", useKey: "", facts, ...more });
 
-  const timed = new Map(input.shifts.flatMap(({ tasks }) => tasks.map((task) => [task.id, task] as const)));
+  const timed = new Map(
+    input.shifts.flatMap(({ tasks }) => tasks.map((task) => [task.id, task] as const)),
+  );
   const seen: Seen[] = evaluation.tasks.flatMap((atEar) => {
     const task = timed.get(atEar.timedTaskId);
     return task ? [{ task, atEar }] : [];
   });
   const own = evaluation.criteria.filter(({ ruleSetKey }) => ruleSetKey === governing.key);
-  const criterionOf = ({ criterionId }: CriterionResult) => governing.criteria.find(({ id }) => id === criterionId);
+  const criterionOf = ({ criterionId }: CriterionResult) =>
+    governing.criteria.find(({ id }) => id === criterionId);
 
   for (const result of own) {
     const criterion = criterionOf(result);
     if (!criterion || result.verdict !== "over") continue;
     const about = { criterion: `${governing.key}:${criterion.id}` };
-    const facts = { levelDb: result.levelDb, dosePct: result.dosePct, valueDb: criterion.levelDb ?? criterion.value };
-    if (criterion.kind === "peak" || criterion.kind === "ceiling") add("peak-or-ceiling", { ...facts, what: criterion.kind }, about);
+    const facts = {
+      levelDb: result.levelDb,
+      dosePct: result.dosePct,
+      valueDb: criterion.levelDb ?? criterion.value,
+    };
+    if (criterion.kind === "peak" || criterion.kind === "ceiling")
+      add("peak-or-ceiling", { ...facts, what: criterion.kind }, about);
     else if (criterion.kind === "dual-protection") {
-      const isSingle = seen.some(({ task, atEar }) => atEar.isWorn && task.protection !== null && task.protection.outer === null);
+      const isSingle = seen.some(
+        ({ task, atEar }) =>
+          atEar.isWorn && task.protection !== null && task.protection.outer === null,
+      );
       const isBare = seen.every(({ atEar }) => !atEar.isWorn);
       if (isSingle || isBare) add("dual-protection", facts, about);
     } else if (criterion.kind === "limit") {
-      add(criterion.judged === "at-the-ear" ? "over-limit-at-ear" : "over-limit-outside", facts, about);
+      add(
+        criterion.judged === "at-the-ear" ? "over-limit-at-ear" : "over-limit-outside",
+        facts,
+        about,
+      );
     }
   }
 
@@ -59,9 +92,14 @@ export function findCauses(input: DayInput, evaluation: DayEvaluation, governing
     task.zone !== "none" || (atEar.outsideDb !== null && atEar.outsideDb >= input.site.wearFromDb);
   const loud = seen.filter(inNoise);
   const bare = loud.filter(({ task }) => task.protection === null);
-  const isRequired = input.mustWear || bare.some(({ task }) => task.zone !== "none") || isProtectionOwed(own, governing);
+  const isRequired =
+    input.mustWear ||
+    bare.some(({ task }) => task.zone !== "none") ||
+    isProtectionOwed(own, governing);
   if (bare.length > 0 && isRequired) {
-    const worst = bare.reduce((a, b) => ((b.atEar.outsideDb ?? 0) > (a.atEar.outsideDb ?? 0) ? b : a));
+    const worst = bare.reduce((a, b) =>
+      (b.atEar.outsideDb ?? 0) > (a.atEar.outsideDb ?? 0) ? b : a,
+    );
     add("no-protector", { taskName: worst.task.name, outsideDb: worst.atEar.outsideDb });
   }
 
@@ -69,32 +107,76 @@ export function findCauses(input: DayInput, evaluation: DayEvaluation, governing
   const deciding = worn.find(({ atEar }) => atEar.timedTaskId === evaluation.decidingTaskId);
   if (deciding && (evaluation.word === "too-little" || evaluation.word === "too-much")) {
     const protection = deciding.task.protection as Protection;
-    add(evaluation.word === "too-little" ? "protects-too-little" : "protects-too-much",
-      { taskName: deciding.task.name, protector: nameOf(protection), wornDb: deciding.atEar.wornDb, outsideDb: deciding.atEar.outsideDb },
-      { useKey: useKeyOf(protection) });
+    add(
+      evaluation.word === "too-little" ? "protects-too-little" : "protects-too-much",
+      {
+        taskName: deciding.task.name,
+        protector: nameOf(protection),
+        wornDb: deciding.atEar.wornDb,
+        outsideDb: deciding.atEar.outsideDb,
+      },
+      { useKey: keyOfUse(protection) },
+    );
   }
 
   const unknown = worn.find(({ task }) => task.wornPct === null);
-  if (unknown) add("wearing-unknown", { taskName: unknown.task.name }, { useKey: useKeyOf(unknown.task.protection as Protection) });
+  if (unknown)
+    add(
+      "wearing-unknown",
+      { taskName: unknown.task.name },
+      { useKey: keyOfUse(unknown.task.protection as Protection) },
+    );
   const short = worn.filter((one) => isWornTooShort(one, governing, input));
   if (short.length > 0) {
-    const worst = short.reduce((a, b) => ((b.atEar.inTaskDb ?? 0) > (a.atEar.inTaskDb ?? 0) ? b : a));
+    const worst = short.reduce((a, b) =>
+      (b.atEar.inTaskDb ?? 0) > (a.atEar.inTaskDb ?? 0) ? b : a,
+    );
     const { task, atEar } = worst;
-    add("not-worn-long-enough",
-      { taskName: task.name, offMin: (task.durationMin * (100 - (task.wornPct ?? 100))) / 100, wornDb: atEar.wornDb, inTaskDb: atEar.inTaskDb },
-      { useKey: useKeyOf(task.protection as Protection) });
+    add(
+      "not-worn-long-enough",
+      {
+        taskName: task.name,
+        offMin: (task.durationMin * (100 - (task.wornPct ?? 100))) / 100,
+        wornDb: atEar.wornDb,
+        inTaskDb: atEar.inTaskDb,
+      },
+      { useKey: keyOfUse(task.protection as Protection) },
+    );
   }
 
   if (evaluation.readingGapDb !== null && Math.abs(evaluation.readingGapDb) >= LARGE_GAP_DB) {
     add("reading-gap", { gapDb: evaluation.readingGapDb, tasksDb: evaluation.tasksDb });
   }
-  if (evaluation.unaccountedMin >= UNACCOUNTED_FROM_MIN && input.shifts.some(({ unaccounted }) => unaccounted.how === "unknown")) {
+  if (
+    evaluation.unaccountedMin >= UNACCOUNTED_FROM_MIN &&
+    input.shifts.some(({ unaccounted }) => unaccounted.how === "unknown")
+  ) {
     add("time-not-accounted", { unaccountedMin: evaluation.unaccountedMin });
   }
-  for (const criterionId of evaluation.missingReadings) {
-    add("reading-missing", { criterionId }, { concerns: "job", criterion: `${governing.key}:${criterionId}` });
+  for (const criterion of missingCriteria(evaluation, governing)) {
+    add(
+      "reading-missing",
+      { criterionId: criterion.id, quantity: criterion.quantity },
+      { concerns: "job", criterion: `${governing.key}:${criterion.id}` },
+    );
   }
   return causes;
+}
+
+/** Below this nobody sends out a meter for a peak. Common practice, no source. */
+const PEAKS_FROM_DB = 80;
+
+/** One reading settles all criteria on the same quantity, so that one finding asks for it. */
+function missingCriteria(evaluation: DayEvaluation, governing: RuleSetVersion): Criterion[] {
+  const byQuantity = new Map<string, Criterion>();
+  for (const id of evaluation.missingReadings) {
+    const criterion = governing.criteria.find((one) => one.id === id);
+    if (!criterion) continue;
+    const isPeak = criterion.quantity === "peak" || criterion.quantity === "slow-maximum";
+    if (isPeak && (evaluation.outsideDb === null || evaluation.outsideDb < PEAKS_FROM_DB)) continue;
+    if (!byQuantity.has(criterion.quantity)) byQuantity.set(criterion.quantity, criterion);
+  }
+  return [...byQuantity.values()];
 }
 
 /** The highest action value is reached, or a limit is passed: protectors have to be there. */
@@ -102,16 +184,33 @@ function isProtectionOwed(own: readonly CriterionResult[], governing: RuleSetVer
   const target = actionValueDb(governing);
   return own.some((result) => {
     const criterion = governing.criteria.find(({ id }) => id === result.criterionId);
-    if (!criterion || result.verdict !== "over" || criterion.judged !== "without-protection") return false;
+    if (!criterion || result.verdict !== "over" || criterion.judged !== "without-protection")
+      return false;
+    if (criterion.quantity === "peak" || criterion.quantity === "slow-maximum") return false;
     if (criterion.kind === "limit") return true;
-    return criterion.kind === "action" && (target === null || (criterion.levelDb ?? criterion.value) >= target);
+    return (
+      criterion.kind === "action" &&
+      (target === null || (criterion.levelDb ?? criterion.value) >= target)
+    );
   });
 }
 
 /** Right while worn, but off for long enough that the task is no longer brought down to the target. */
-function isWornTooShort({ task, atEar }: Seen, governing: RuleSetVersion, input: DayInput): boolean {
-  const targetDb = input.personalTargetDb ?? governing.protection.targetDb ?? actionValueDb(governing);
+function isWornTooShort(
+  { task, atEar }: Seen,
+  governing: RuleSetVersion,
+  input: DayInput,
+): boolean {
+  const targetDb =
+    input.personalTargetDb ?? governing.protection.targetDb ?? actionValueDb(governing);
   const { wornDb, inTaskDb } = atEar;
-  if (targetDb === null || wornDb === null || inTaskDb === null || task.wornPct === null || task.wornPct >= 100) return false;
+  if (
+    targetDb === null ||
+    wornDb === null ||
+    inTaskDb === null ||
+    task.wornPct === null ||
+    task.wornPct >= 100
+  )
+    return false;
   return wornDb <= targetDb && inTaskDb > targetDb;
 }

@@ -22,7 +22,12 @@ export const pageOf = <Row extends z.ZodType>(row: Row) =>
   z.object({ rows: z.array(row), next: z.string().nullable() });
 
 export const Can = <Action extends string>(...actions: Action[]) =>
-  z.object(Object.fromEntries(actions.map((action) => [action, z.boolean()])) as Record<Action, z.ZodBoolean>);
+  z.object(
+    Object.fromEntries(actions.map((action) => [action, z.boolean()])) as Record<
+      Action,
+      z.ZodBoolean
+    >,
+  );
 
 /** A list narrowed to one site. */
 export const AtSiteQuery = z.object({ siteId: z.uuid().optional() });

@@ -12,8 +12,17 @@ export const CrewInput = z.object({
 export type CrewInput = z.infer<typeof CrewInput>;
 
 const Dated = { fromDate: IsoDate, toDate: IsoDate.nullable() };
-export const MembershipInput = z.object({ workerId: z.uuid(), fromDate: IsoDate, toDate: IsoDate.nullable().default(null), isLoan: z.boolean().default(false) });
-export const SupervisorInput = z.object({ userId: z.uuid(), fromDate: IsoDate, toDate: IsoDate.nullable().default(null) });
+export const MembershipInput = z.object({
+  workerId: z.uuid(),
+  fromDate: IsoDate,
+  toDate: IsoDate.nullable().default(null),
+  isLoan: z.boolean().default(false),
+});
+export const SupervisorInput = z.object({
+  userId: z.uuid(),
+  fromDate: IsoDate,
+  toDate: IsoDate.nullable().default(null),
+});
 export const DatedEnd = z.object({ toDate: IsoDate });
 
 export const CrewView = CrewInput.extend({
@@ -27,8 +36,19 @@ export const CrewView = CrewInput.extend({
 export type CrewView = z.infer<typeof CrewView>;
 export const CrewList = z.object({ rows: z.array(CrewView) });
 export const CrewDetail = CrewView.extend({
-  memberships: z.array(z.object({ id: z.uuid(), workerId: z.uuid(), workerName: z.string(), employeeNumber: z.string(), isLoan: z.boolean(), ...Dated })),
-  supervisors: z.array(z.object({ id: z.uuid(), userId: z.uuid(), userName: z.string(), ...Dated })),
+  memberships: z.array(
+    z.object({
+      id: z.uuid(),
+      workerId: z.uuid(),
+      workerName: z.string(),
+      employeeNumber: z.string(),
+      isLoan: z.boolean(),
+      ...Dated,
+    }),
+  ),
+  supervisors: z.array(
+    z.object({ id: z.uuid(), userId: z.uuid(), userName: z.string(), ...Dated }),
+  ),
 });
 export type CrewDetail = z.infer<typeof CrewDetail>;
 
@@ -40,13 +60,27 @@ export const CrewSheetRow = z.object({
   figures: DayFigures.nullable(),
   /** The one order for this worker today, and the finding it comes from. */
   order: z
-    .object({ findingId: z.uuid(), kind: FindingRow.shape.kind, state: FindingRow.shape.state, facts: z.record(z.string(), z.unknown()), revision: z.number(), canMarkDone: z.boolean() })
+    .object({
+      findingId: z.uuid(),
+      kind: FindingRow.shape.kind,
+      state: FindingRow.shape.state,
+      facts: z.record(z.string(), z.unknown()),
+      revision: z.number(),
+      canMarkDone: z.boolean(),
+    })
     .nullable(),
 });
 export type CrewSheetRow = z.infer<typeof CrewSheetRow>;
 
 export const CrewSheetView = z.object({
-  crew: z.object({ id: z.uuid(), name: z.string(), siteId: z.uuid(), usualStart: z.string(), usualLengthMin: z.number(), timeZone: z.string() }),
+  crew: z.object({
+    id: z.uuid(),
+    name: z.string(),
+    siteId: z.uuid(),
+    usualStart: z.string(),
+    usualLengthMin: z.number(),
+    timeZone: z.string(),
+  }),
   crews: z.array(z.object({ id: z.uuid(), name: z.string() })),
   governingRuleSet: z.string(),
   ruleSetVersion: z.number(),

@@ -1,14 +1,27 @@
 import { z } from "zod";
 import type {
-  ActivePart, BandAttenuation, DayInput, LevelMetric, MeterSettings, OctaveBandValues, Protection, ProtectorData,
-  ReadingInput, ShiftInput, TaskLevel, TimedTask,
+  ActivePart,
+  BandAttenuation,
+  DayInput,
+  LevelMetric,
+  MeterSettings,
+  OctaveBandValues,
+  Protection,
+  ProtectorData,
+  ReadingInput,
+  ShiftInput,
+  TaskLevel,
+  TimedTask,
 } from "../acoustics/types";
 import { IsoDate, LevelDb } from "./common";
 
 const db = z.number().min(-40).max(200);
 
 /** Holds a schema to the engine's own type, so that the two can't drift apart. */
-const as = <T>() => <S extends z.ZodType<T>>(schema: S): S => schema;
+const as =
+  <T>() =>
+  <S extends z.ZodType<T>>(schema: S): S =>
+    schema;
 
 export const OctaveBands = as<OctaveBandValues>()(
   z.tuple([db.nullable(), db, db, db, db, db, db, db]),
@@ -16,8 +29,16 @@ export const OctaveBands = as<OctaveBandValues>()(
 
 export const Weighting = z.enum(["A", "C", "Z"]);
 export const ProtectorKindName = z.enum([
-  "earmuff", "helmet-earmuff", "foam-plug", "premoulded-plug", "custom-plug", "banded-plug", "level-dependent",
-  "active-earmuff", "active-plug", "communication-headset",
+  "earmuff",
+  "helmet-earmuff",
+  "foam-plug",
+  "premoulded-plug",
+  "custom-plug",
+  "banded-plug",
+  "level-dependent",
+  "active-earmuff",
+  "active-plug",
+  "communication-headset",
 ]);
 
 export const Settings = as<MeterSettings>()(
@@ -56,10 +77,15 @@ export const TaskLevelFacts = z.object({
 });
 
 const Level = as<TaskLevel>()(
-  z.object({ revisionId: z.string().nullable().default(null), ...TaskLevelFacts.shape }) as unknown as z.ZodType<TaskLevel>,
+  z.object({
+    revisionId: z.string().nullable().default(null),
+    ...TaskLevelFacts.shape,
+  }) as unknown as z.ZodType<TaskLevel>,
 );
 
-export const Attenuation = as<BandAttenuation>()(z.object({ meanDb: OctaveBands, sdDb: OctaveBands }));
+export const Attenuation = as<BandAttenuation>()(
+  z.object({ meanDb: OctaveBands, sdDb: OctaveBands }),
+);
 
 export const Active = as<ActivePart>()(
   z.object({
@@ -155,8 +181,15 @@ const Shift = z
     const sum = context.value.tasks.reduce((total, task) => total + task.durationMin, 0);
     if (sum > context.value.lengthMin + 1e-6) {
       context.issues.push({
-        code: "custom", input: context.value, path: ["tasks"],
-        params: { code: "tasks-longer-than-shift", sumMin: sum, lengthMin: context.value.lengthMin, overMin: sum - context.value.lengthMin },
+        code: "custom",
+        input: context.value,
+        path: ["tasks"],
+        params: {
+          code: "tasks-longer-than-shift",
+          sumMin: sum,
+          lengthMin: context.value.lengthMin,
+          overMin: sum - context.value.lengthMin,
+        },
       });
     }
   }) as unknown as z.ZodType<ShiftInput>;

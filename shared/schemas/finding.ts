@@ -2,9 +2,20 @@ import { z } from "zod";
 import { Can, IsoDate, PageQuery, pageOf, Reason } from "./common";
 
 export const FINDING_KINDS = [
-  "over-limit-outside", "over-limit-at-ear", "protects-too-little", "protects-too-much", "dual-protection", "no-protector",
-  "not-worn-long-enough", "wearing-unknown", "peak-or-ceiling", "reading-gap", "time-not-accounted", "reading-missing",
-  "instrument", "problem-reported",
+  "over-limit-outside",
+  "over-limit-at-ear",
+  "protects-too-little",
+  "protects-too-much",
+  "dual-protection",
+  "no-protector",
+  "not-worn-long-enough",
+  "wearing-unknown",
+  "peak-or-ceiling",
+  "reading-gap",
+  "time-not-accounted",
+  "reading-missing",
+  "instrument",
+  "problem-reported",
 ] as const;
 export const FindingKind = z.enum(FINDING_KINDS);
 export type FindingKind = z.infer<typeof FindingKind>;
@@ -26,7 +37,9 @@ export const DayFigures = z.object({
   whileWornDb: z.number().nullable(),
   verdictOutside: z.enum(["under", "over", "cant-tell-yet", "not-assessed"]),
   verdictAtEar: z.enum(["under", "over", "cant-tell-yet", "not-assessed"]),
-  word: z.enum(["too-little", "just-enough", "good", "strong-side", "too-much", "enough"]).nullable(),
+  word: z
+    .enum(["too-little", "just-enough", "good", "strong-side", "too-much", "enough"])
+    .nullable(),
   decidingTaskName: z.string().nullable(),
   hasProtector: z.enum(["yes", "no", "unknown"]),
   reason: z.string().nullable(),
@@ -94,7 +107,15 @@ export const FindingView = FindingRow.extend({
   previousId: z.uuid().nullable(),
   steps: z.array(FindingStep),
   evidence: z.array(DayFigures),
-  told: z.array(z.object({ noticeId: z.uuid(), name: z.string(), audience: z.string(), state: z.string(), at: z.string().nullable() })),
+  told: z.array(
+    z.object({
+      noticeId: z.uuid(),
+      name: z.string(),
+      audience: z.string(),
+      state: z.string(),
+      at: z.string().nullable(),
+    }),
+  ),
 });
 export type FindingView = z.infer<typeof FindingView>;
 

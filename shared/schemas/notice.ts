@@ -1,6 +1,14 @@
 import { z } from "zod";
 
-export const NoticeState = z.enum(["waiting", "held", "sending", "sent", "possibly-sent", "failed", "withdrawn"]);
+export const NoticeState = z.enum([
+  "waiting",
+  "held",
+  "sending",
+  "sent",
+  "possibly-sent",
+  "failed",
+  "withdrawn",
+]);
 export type NoticeState = z.infer<typeof NoticeState>;
 
 export const NoticeRow = z.object({
@@ -14,7 +22,9 @@ export const NoticeRow = z.object({
   tries: z.number(),
   lastError: z.string().nullable(),
   replacesId: z.uuid().nullable(),
-  workers: z.array(z.object({ id: z.uuid(), name: z.string(), date: z.string(), kinds: z.array(z.string()) })),
+  workers: z.array(
+    z.object({ id: z.uuid(), name: z.string(), date: z.string(), kinds: z.array(z.string()) }),
+  ),
   revision: z.number(),
 });
 export type NoticeRow = z.infer<typeof NoticeRow>;
@@ -30,5 +40,10 @@ export const EntryNotices = z.object({
 export type EntryNotices = z.infer<typeof EntryNotices>;
 
 /** How a notice reads: as it was sent, or as it would be now. */
-export const NoticeText = z.object({ subject: z.string(), text: z.string(), html: z.string(), isSent: z.boolean() });
+export const NoticeText = z.object({
+  subject: z.string(),
+  text: z.string(),
+  html: z.string(),
+  isSent: z.boolean(),
+});
 export const NoticeList = z.object({ rows: z.array(NoticeRow) });

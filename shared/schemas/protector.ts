@@ -7,12 +7,20 @@ type Context = { value: z.infer<typeof ProtectorFacts>; issues: unknown[] };
 /** What a certificate can't say: an SNR below its L, a deviation below zero. */
 function plausible(context: Context): void {
   const { snrDb, lDb, hDb, mDb, bands, active } = context.value;
-  const add = (path: (string | number)[], code: string) => context.issues.push({ code: "custom", input: context.value, path, params: { code } });
+  const add = (path: (string | number)[], code: string) =>
+    context.issues.push({ code: "custom", input: context.value, path, params: { code } });
   if (snrDb !== null && lDb !== null && snrDb < lDb) add(["snrDb"], "snr-below-l");
-  if ([hDb, mDb, lDb].some((value) => value !== null) && [hDb, mDb, lDb].some((value) => value === null)) add(["mDb"], "hml-all-three");
-  if (bands?.sdDb.some((value) => value !== null && value < 0)) add(["bands", "sdDb"], "deviation-negative");
-  if (bands && (bands.meanDb[0] === null) !== (bands.sdDb[0] === null)) add(["bands", "sdDb", 0], "band-missing");
-  if (active && (active.delayS === null) !== (active.gain === null)) add(["active", "gain"], "delay-and-gain-together");
+  if (
+    [hDb, mDb, lDb].some((value) => value !== null) &&
+    [hDb, mDb, lDb].some((value) => value === null)
+  )
+    add(["mDb"], "hml-all-three");
+  if (bands?.sdDb.some((value) => value !== null && value < 0))
+    add(["bands", "sdDb"], "deviation-negative");
+  if (bands && (bands.meanDb[0] === null) !== (bands.sdDb[0] === null))
+    add(["bands", "sdDb", 0], "band-missing");
+  if (active && (active.delayS === null) !== (active.gain === null))
+    add(["active", "gain"], "delay-and-gain-together");
 }
 
 export const ProtectorRevisionInput = ProtectorFacts.extend({
@@ -21,7 +29,11 @@ export const ProtectorRevisionInput = ProtectorFacts.extend({
 }).check((context) => plausible(context as unknown as Context));
 export type ProtectorRevisionInput = z.infer<typeof ProtectorRevisionInput>;
 
-export const ProtectorInput = z.object({ name: Name(120), kind: ProtectorKindName, isArchived: z.boolean().default(false) });
+export const ProtectorInput = z.object({
+  name: Name(120),
+  kind: ProtectorKindName,
+  isArchived: z.boolean().default(false),
+});
 export const NewProtectorInput = ProtectorInput.extend({ data: ProtectorRevisionInput });
 
 export const ProtectorView = ProtectorInput.extend({
@@ -34,5 +46,14 @@ export const ProtectorView = ProtectorInput.extend({
 export type ProtectorView = z.infer<typeof ProtectorView>;
 export const ProtectorList = z.object({ rows: z.array(ProtectorView) });
 export const ProtectorDetail = ProtectorView.extend({
-  history: z.array(ProtectorFacts.extend({ id: z.uuid(), number: z.number(), effectiveFrom: IsoDate, reason: z.string().nullable(), authorName: z.string().nullable(), createdAt: z.string() })),
+  history: z.array(
+    ProtectorFacts.extend({
+      id: z.uuid(),
+      number: z.number(),
+      effectiveFrom: IsoDate,
+      reason: z.string().nullable(),
+      authorName: z.string().nullable(),
+      createdAt: z.string(),
+    }),
+  ),
 });

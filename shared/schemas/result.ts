@@ -5,14 +5,30 @@ import { DayFigures } from "./finding";
 
 export const DayParams = z.object({ id: z.uuid(), date: IsoDate });
 
-export const ResultRef = z.object({ id: z.uuid(), computedAt: z.string(), isCurrent: z.boolean(), governingRuleSet: z.string(), ruleSetVersion: z.number(), methodVersion: z.number() });
+export const ResultRef = z.object({
+  id: z.uuid(),
+  computedAt: z.string(),
+  isCurrent: z.boolean(),
+  governingRuleSet: z.string(),
+  ruleSetVersion: z.number(),
+  methodVersion: z.number(),
+});
 
 /** A day with everything its working is drawn from; the working itself is built by the same engine where it is shown. */
 export const ResultView = z.object({
   id: z.uuid(),
   worker: z.object({ id: z.uuid(), name: z.string(), employeeNumber: z.string() }),
   date: IsoDate,
-  shifts: z.array(z.object({ id: z.uuid(), localStart: z.string(), lengthMin: z.number(), revision: z.number(), authorName: z.string().nullable(), reason: z.string().nullable() })),
+  shifts: z.array(
+    z.object({
+      id: z.uuid(),
+      localStart: z.string(),
+      lengthMin: z.number(),
+      revision: z.number(),
+      authorName: z.string().nullable(),
+      reason: z.string().nullable(),
+    }),
+  ),
   figures: DayFigures,
   origin: z.enum(["computed", "imported"]),
   computedAt: z.string(),

@@ -13,7 +13,11 @@ export const InstrumentInput = z.object({
   isArchived: z.boolean().default(false),
 });
 export type InstrumentInput = z.infer<typeof InstrumentInput>;
-export const InstrumentView = InstrumentInput.extend({ id: z.uuid(), revision: z.number(), can: Can("change") });
+export const InstrumentView = InstrumentInput.extend({
+  id: z.uuid(),
+  revision: z.number(),
+  can: Can("change"),
+});
 export type InstrumentView = z.infer<typeof InstrumentView>;
 export const InstrumentList = z.object({ rows: z.array(InstrumentView) });
 
@@ -34,15 +38,26 @@ const Facts = z.object({
 type Issues = { value: z.infer<typeof Facts>; issues: unknown[] };
 function plausible(context: Issues): void {
   const { checkBeforeDb, checkAfterDb, keptReason, readings } = context.value;
-  const add = (path: (string | number)[], code: string, params: Record<string, string | number> = {}) =>
-    context.issues.push({ code: "custom", input: context.value, path, params: { code, ...params } });
+  const add = (
+    path: (string | number)[],
+    code: string,
+    params: Record<string, string | number> = {},
+  ) =>
+    context.issues.push({
+      code: "custom",
+      input: context.value,
+      path,
+      params: { code, ...params },
+    });
   if (checkBeforeDb !== null && checkAfterDb !== null) {
     const driftDb = Math.abs(checkAfterDb - checkBeforeDb);
-    if (driftDb > FIELD_CHECK_TOLERANCE_DB + 1e-9 && keptReason === null) add(["keptReason"], "field-check-drift", { driftDb });
+    if (driftDb > FIELD_CHECK_TOLERANCE_DB + 1e-9 && keptReason === null)
+      add(["keptReason"], "field-check-drift", { driftDb });
   }
   readings.forEach((reading, index) => {
     const { dosePct, averageDb, lceqDb, lasMaxDb, peak } = reading;
-    if ([dosePct, averageDb, lceqDb, lasMaxDb, peak].every((value) => value === null)) add(["readings", index, "averageDb"], "reading-empty");
+    if ([dosePct, averageDb, lceqDb, lasMaxDb, peak].every((value) => value === null))
+      add(["readings", index, "averageDb"], "reading-empty");
   });
 }
 
@@ -54,7 +69,10 @@ export const RunInput = Facts.extend({
 }).check((context) => plausible(context as unknown as Issues));
 export type RunInput = z.infer<typeof RunInput>;
 
-export const RunCorrection = Facts.extend({ reason: Reason, isVoid: z.boolean().default(false) }).check((context) => plausible(context as unknown as Issues));
+export const RunCorrection = Facts.extend({
+  reason: Reason,
+  isVoid: z.boolean().default(false),
+}).check((context) => plausible(context as unknown as Issues));
 export type RunCorrection = z.infer<typeof RunCorrection>;
 
 export const RunView = Facts.extend({
@@ -75,4 +93,9 @@ export const RunView = Facts.extend({
 });
 export type RunView = z.infer<typeof RunView>;
 export const RunPage = pageOf(RunView);
-export const RunFilter = PageQuery.extend({ workerId: z.uuid().optional(), date: IsoDate.optional(), instrumentId: z.uuid().optional(), siteId: z.uuid().optional() });
+export const RunFilter = PageQuery.extend({
+  workerId: z.uuid().optional(),
+  date: IsoDate.optional(),
+  instrumentId: z.uuid().optional(),
+  siteId: z.uuid().optional(),
+});

@@ -3,7 +3,12 @@ import { z } from "zod";
 export const RoleName = z.enum(["officer", "supervisor", "worker", "auditor", "administrator"]);
 export type RoleName = z.infer<typeof RoleName>;
 
-export const SiteRef = z.object({ id: z.uuid(), name: z.string(), timeZone: z.string(), language: z.string() });
+export const SiteRef = z.object({
+  id: z.uuid(),
+  name: z.string(),
+  timeZone: z.string(),
+  language: z.string(),
+});
 
 export const SessionView = z.object({
   user: z

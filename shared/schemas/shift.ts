@@ -31,13 +31,21 @@ export function checkShiftFacts(context: Shape): void {
   const sumMin = tasks.reduce((sum, task) => sum + task.durationMin, 0);
   if (sumMin > lengthMin + 1e-6) {
     context.issues.push({
-      code: "custom", input: context.value, path: ["tasks"],
+      code: "custom",
+      input: context.value,
+      path: ["tasks"],
       params: { code: "tasks-longer-than-shift", sumMin, lengthMin, overMin: sumMin - lengthMin },
     });
   }
   const seen = new Set<string>();
   tasks.forEach(({ taskId }, index) => {
-    if (seen.has(taskId)) context.issues.push({ code: "custom", input: taskId, path: ["tasks", index, "taskId"], params: { code: "task-twice" } });
+    if (seen.has(taskId))
+      context.issues.push({
+        code: "custom",
+        input: taskId,
+        path: ["tasks", index, "taskId"],
+        params: { code: "task-twice" },
+      });
     seen.add(taskId);
   });
 }
@@ -93,8 +101,14 @@ export const SavedShift = z.object({
 export type SavedShift = z.infer<typeof SavedShift>;
 
 export const GridRun = ReadingFacts.extend({
-  runId: z.uuid(), runRevision: z.number(), readingId: z.uuid(), instrumentId: z.uuid(), instrumentClass: z.enum(["class-1-meter", "class-2-meter", "dosimeter"]),
-  durationMin: z.number(), covers: z.enum(["shift", "projected", "part"]), keptReason: z.string().nullable(),
+  runId: z.uuid(),
+  runRevision: z.number(),
+  readingId: z.uuid(),
+  instrumentId: z.uuid(),
+  instrumentClass: z.enum(["class-1-meter", "class-2-meter", "dosimeter"]),
+  durationMin: z.number(),
+  covers: z.enum(["shift", "projected", "part"]),
+  keptReason: z.string().nullable(),
 });
 export type GridRun = z.infer<typeof GridRun>;
 
@@ -110,58 +124,144 @@ export const GridTask = z.object({
 export type GridTask = z.infer<typeof GridTask>;
 
 export const GridRow = z.object({
-  worker: z.object({ id: z.uuid(), name: z.string(), employeeNumber: z.string(), mustWear: z.boolean(), personalTargetDb: z.number().nullable(), hiredOn: IsoDate, leftOn: IsoDate.nullable() }),
+  worker: z.object({
+    id: z.uuid(),
+    name: z.string(),
+    employeeNumber: z.string(),
+    mustWear: z.boolean(),
+    personalTargetDb: z.number().nullable(),
+    hiredOn: IsoDate,
+    leftOn: IsoDate.nullable(),
+  }),
   isLoan: z.boolean(),
   isAbsent: z.boolean(),
   nominal: z.array(z.object({ taskId: z.uuid(), durationMin: z.number() })),
-  assignments: z.array(z.object({ id: z.uuid(), taskId: z.uuid().nullable(), areaId: z.uuid().nullable(), innerModelId: z.uuid(), outerModelId: z.uuid().nullable() })),
+  assignments: z.array(
+    z.object({
+      id: z.uuid(),
+      taskId: z.uuid().nullable(),
+      areaId: z.uuid().nullable(),
+      innerModelId: z.uuid(),
+      outerModelId: z.uuid().nullable(),
+    }),
+  ),
   /** Last wearing time recorded per task. */
   lastWorn: z.record(z.string(), z.number()),
   /** Longest stay in each task in this worker's last year. */
   longestMin: z.record(z.string(), z.number()),
   saved: SavedShift.nullable(),
   /** Other shifts of the same day, at this or another site: they count into the day. */
-  otherShifts: z.array(z.object({ shiftId: z.uuid(), crewName: z.string().nullable(), localStart: z.string(), lengthMin: z.number() })),
+  otherShifts: z.array(
+    z.object({
+      shiftId: z.uuid(),
+      crewName: z.string().nullable(),
+      localStart: z.string(),
+      lengthMin: z.number(),
+    }),
+  ),
   readings: z.array(GridRun),
-  lastShift: z.object({ date: IsoDate, localStart: z.string(), lengthMin: z.number(), unaccounted: UnaccountedInput, tasks: z.array(ShiftTaskInput) }).nullable(),
+  lastShift: z
+    .object({
+      date: IsoDate,
+      localStart: z.string(),
+      lengthMin: z.number(),
+      unaccounted: UnaccountedInput,
+      tasks: z.array(ShiftTaskInput),
+    })
+    .nullable(),
   figures: DayFigures.nullable(),
 });
 export type GridRow = z.infer<typeof GridRow>;
 
 export const DayGridView = z.object({
-  crew: z.object({ id: z.uuid(), name: z.string(), siteId: z.uuid(), siteName: z.string(), usualStart: z.string(), usualLengthMin: z.number(), timeZone: z.string() }),
+  crew: z.object({
+    id: z.uuid(),
+    name: z.string(),
+    siteId: z.uuid(),
+    siteName: z.string(),
+    usualStart: z.string(),
+    usualLengthMin: z.number(),
+    timeZone: z.string(),
+  }),
   date: IsoDate,
   today: IsoDate,
   settings: z.object({
-    governingRuleSet: z.string(), ruleSetVersion: z.number(), comparisonRuleSets: z.array(z.string()),
-    wearFromDb: z.number(), creditsActivePart: z.boolean(), usesUncertainty: z.boolean(),
+    governingRuleSet: z.string(),
+    ruleSetVersion: z.number(),
+    comparisonRuleSets: z.array(z.string()),
+    wearFromDb: z.number(),
+    creditsActivePart: z.boolean(),
+    usesUncertainty: z.boolean(),
   }),
   tasks: z.array(GridTask),
   models: z.array(z.custom<ProtectorData>()),
-  instruments: z.array(InstrumentView.pick({ id: true, name: true, serialNumber: true, class: true, kind: true, presets: true })),
+  instruments: z.array(
+    InstrumentView.pick({
+      id: true,
+      name: true,
+      serialNumber: true,
+      class: true,
+      kind: true,
+      presets: true,
+    }),
+  ),
   rows: z.array(GridRow),
   notices: EntryNotices.nullable(),
 });
 export type DayGridView = z.infer<typeof DayGridView>;
 
-export const RowIssue = z.object({ path: z.array(z.union([z.string(), z.number()])), code: z.string(), params: z.record(z.string(), z.union([z.string(), z.number()])) });
+export const RowIssue = z.object({
+  path: z.array(z.union([z.string(), z.number()])),
+  code: z.string(),
+  params: z.record(z.string(), z.union([z.string(), z.number()])),
+});
 
 export const DaySaveView = z.object({
   entryId: z.uuid(),
-  saved: z.array(z.object({ index: z.number(), workerId: z.uuid(), shift: SavedShift.nullable(), figures: DayFigures.nullable(), readings: z.array(GridRun) })),
+  saved: z.array(
+    z.object({
+      index: z.number(),
+      workerId: z.uuid(),
+      shift: SavedShift.nullable(),
+      figures: DayFigures.nullable(),
+      readings: z.array(GridRun),
+    }),
+  ),
   /** Rows that were not stored, with what is wrong. */
-  refused: z.array(z.object({ index: z.number(), workerId: z.string().nullable(), issues: z.array(RowIssue) })),
+  refused: z.array(
+    z.object({ index: z.number(), workerId: z.string().nullable(), issues: z.array(RowIssue) }),
+  ),
   /** Rows that somebody else saved in the meantime, with what stands now. */
-  conflicts: z.array(z.object({ index: z.number(), workerId: z.uuid(), current: SavedShift.nullable() })),
+  conflicts: z.array(
+    z.object({ index: z.number(), workerId: z.uuid(), current: SavedShift.nullable() }),
+  ),
   notices: EntryNotices,
 });
 export type DaySaveView = z.infer<typeof DaySaveView>;
 
-export const ShiftCorrection = ShiftFacts.extend({ reason: Reason, confirmsWholeDay: z.boolean().default(false) }).check((context) => checkShiftFacts(context as unknown as Shape));
+export const ShiftCorrection = ShiftFacts.extend({
+  reason: Reason,
+  confirmsWholeDay: z.boolean().default(false),
+}).check((context) => checkShiftFacts(context as unknown as Shape));
 export const ShiftVoid = z.object({ reason: Reason });
 
 export const ShiftView = SavedShift.extend({
-  workerId: z.uuid(), workerName: z.string(), date: IsoDate, timeZone: z.string(), crewId: z.uuid().nullable(), isVoid: z.boolean(),
-  revisions: z.array(z.object({ number: z.number(), reason: z.string().nullable(), authorName: z.string().nullable(), at: z.string(), lengthMin: z.number(), tasks: z.array(ShiftTaskInput.extend({ taskName: z.string() })), isVoid: z.boolean() })),
+  workerId: z.uuid(),
+  workerName: z.string(),
+  date: IsoDate,
+  timeZone: z.string(),
+  crewId: z.uuid().nullable(),
+  isVoid: z.boolean(),
+  revisions: z.array(
+    z.object({
+      number: z.number(),
+      reason: z.string().nullable(),
+      authorName: z.string().nullable(),
+      at: z.string(),
+      lengthMin: z.number(),
+      tasks: z.array(ShiftTaskInput.extend({ taskName: z.string() })),
+      isVoid: z.boolean(),
+    }),
+  ),
   can: z.object({ correct: z.boolean() }),
 });

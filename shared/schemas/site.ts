@@ -25,8 +25,20 @@ export const NewSiteInput = SiteInput.extend({ settings: SiteSettingsFacts });
 export const SiteView = SiteInput.extend({
   id: z.uuid(),
   revision: z.number(),
-  settings: SiteSettingsFacts.extend({ id: z.uuid(), number: z.number(), reason: z.string().nullable() }),
-  settingsHistory: z.array(SiteSettingsFacts.extend({ id: z.uuid(), number: z.number(), reason: z.string().nullable(), authorName: z.string().nullable(), createdAt: z.string() })),
+  settings: SiteSettingsFacts.extend({
+    id: z.uuid(),
+    number: z.number(),
+    reason: z.string().nullable(),
+  }),
+  settingsHistory: z.array(
+    SiteSettingsFacts.extend({
+      id: z.uuid(),
+      number: z.number(),
+      reason: z.string().nullable(),
+      authorName: z.string().nullable(),
+      createdAt: z.string(),
+    }),
+  ),
   can: Can("change", "changeRules"),
 });
 export type SiteView = z.infer<typeof SiteView>;
@@ -39,17 +51,27 @@ export const AreaInput = z.object({
   isArchived: z.boolean().default(false),
 });
 export type AreaInput = z.infer<typeof AreaInput>;
-export const AreaView = AreaInput.extend({ id: z.uuid(), revision: z.number(), can: Can("change") });
+export const AreaView = AreaInput.extend({
+  id: z.uuid(),
+  revision: z.number(),
+  can: Can("change"),
+});
 export const AreaList = z.object({ rows: z.array(AreaView) });
 
 /** Who would change verdict, before a change of rules or data is made. */
 export const ChangePreview = z.object({
   days: z.number(),
   workers: z.number(),
-  changes: z.array(z.object({
-    workerId: z.uuid(), workerName: z.string(), date: IsoDate, line: z.enum(["without-protection", "at-the-ear", "protector"]),
-    before: z.string(), after: z.string(),
-  })),
+  changes: z.array(
+    z.object({
+      workerId: z.uuid(),
+      workerName: z.string(),
+      date: IsoDate,
+      line: z.enum(["without-protection", "at-the-ear", "protector"]),
+      before: z.string(),
+      after: z.string(),
+    }),
+  ),
   /** More than the list holds. */
   changedDays: z.number(),
   /** Days concerned beyond those looked at, which are the latest; 0: all were. */

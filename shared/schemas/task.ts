@@ -11,10 +11,18 @@ export const TaskLevelInput = TaskLevelFacts.extend({
 export type TaskLevelInput = z.infer<typeof TaskLevelInput>;
 
 export const TaskLevelView = TaskLevelInput.extend({
-  id: z.uuid(), number: z.number(), authorName: z.string().nullable(), createdAt: z.string(),
+  id: z.uuid(),
+  number: z.number(),
+  authorName: z.string().nullable(),
+  createdAt: z.string(),
 });
 
-export const TaskInput = z.object({ siteId: z.uuid(), areaId: z.uuid().nullable().default(null), name: Name(120), isArchived: z.boolean().default(false) });
+export const TaskInput = z.object({
+  siteId: z.uuid(),
+  areaId: z.uuid().nullable().default(null),
+  name: Name(120),
+  isArchived: z.boolean().default(false),
+});
 export type TaskInput = z.infer<typeof TaskInput>;
 export const NewTaskInput = TaskInput.extend({ level: TaskLevelInput.nullable().default(null) });
 
@@ -28,15 +36,25 @@ export const TaskView = TaskInput.extend({
   can: Can("change"),
 });
 export type TaskView = z.infer<typeof TaskView>;
-export const TaskDetail = TaskView.extend({ levels: z.array(TaskLevelView), shiftsCount: z.number() });
+export const TaskDetail = TaskView.extend({
+  levels: z.array(TaskLevelView),
+  shiftsCount: z.number(),
+});
 export const TaskList = z.object({ rows: z.array(TaskView) });
 
 export const JobInput = z.object({
   siteId: z.uuid(),
   name: Name(120),
   isArchived: z.boolean().default(false),
-  tasks: z.array(z.object({ taskId: z.uuid(), durationMin: z.number().positive().max(1440) })).max(24),
+  tasks: z
+    .array(z.object({ taskId: z.uuid(), durationMin: z.number().positive().max(1440) }))
+    .max(24),
 });
 export type JobInput = z.infer<typeof JobInput>;
-export const JobView = JobInput.extend({ id: z.uuid(), revision: z.number(), workersCount: z.number(), can: Can("change") });
+export const JobView = JobInput.extend({
+  id: z.uuid(),
+  revision: z.number(),
+  workersCount: z.number(),
+  can: Can("change"),
+});
 export const JobList = z.object({ rows: z.array(JobView) });

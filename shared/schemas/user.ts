@@ -16,11 +16,22 @@ export const UserInput = z
   })
   .check((context) => {
     const { email, expectedSubject } = context.value;
-    if (email === null && expectedSubject === null) context.issues.push({ code: "custom", input: email, path: ["email"], params: { code: "email-or-subject" } });
+    if (email === null && expectedSubject === null)
+      context.issues.push({
+        code: "custom",
+        input: email,
+        path: ["email"],
+        params: { code: "email-or-subject" },
+      });
   });
 export type UserInput = z.infer<typeof UserInput>;
 
-export const UserChange = z.object({ name: Name(200), language: Language, workerId: z.uuid().nullable(), grants: z.array(GrantInput).max(50) });
+export const UserChange = z.object({
+  name: Name(200),
+  language: Language,
+  workerId: z.uuid().nullable(),
+  grants: z.array(GrantInput).max(50),
+});
 
 export const UserView = z.object({
   id: z.uuid(),
@@ -31,7 +42,14 @@ export const UserView = z.object({
   workerId: z.uuid().nullable(),
   workerName: z.string().nullable(),
   language: z.string(),
-  grants: z.array(z.object({ id: z.uuid(), role: RoleName, siteId: z.uuid().nullable(), siteName: z.string().nullable() })),
+  grants: z.array(
+    z.object({
+      id: z.uuid(),
+      role: RoleName,
+      siteId: z.uuid().nullable(),
+      siteName: z.string().nullable(),
+    }),
+  ),
   lastSignInAt: z.string().nullable(),
   revokedAt: z.string().nullable(),
   revision: z.number(),

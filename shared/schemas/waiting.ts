@@ -7,8 +7,16 @@ export const WaitingQuery = z.object({ siteId: z.uuid().optional() });
 
 /** How far a crew's day of today is entered. */
 export const CrewProgress = z.object({
-  id: z.uuid(), name: z.string(), siteId: z.uuid(), timeZone: z.string(), date: IsoDate, start: z.string(), lengthMin: z.number(),
-  members: z.number(), saved: z.number(), absent: z.number(),
+  id: z.uuid(),
+  name: z.string(),
+  siteId: z.uuid(),
+  timeZone: z.string(),
+  date: IsoDate,
+  start: z.string(),
+  lengthMin: z.number(),
+  members: z.number(),
+  saved: z.number(),
+  absent: z.number(),
 });
 export type CrewProgress = z.infer<typeof CrewProgress>;
 
@@ -26,19 +34,51 @@ export const WaitingView = z.object({
 export type WaitingView = z.infer<typeof WaitingView>;
 
 /** What is missing in a year, before it is exported. */
-export const GapKind = z.enum(["not-measured", "no-protector", "notice-late", "notice-not-sent", "not-assessed"]);
-export const YearQuery = z.object({ siteId: z.uuid(), year: z.coerce.number().int().min(1970).max(2200) });
+export const GapKind = z.enum([
+  "not-measured",
+  "no-protector",
+  "notice-late",
+  "notice-not-sent",
+  "not-assessed",
+]);
+export const YearQuery = z.object({
+  siteId: z.uuid(),
+  year: z.coerce.number().int().min(1970).max(2200),
+});
 /** Workers in the file by employee number, or by name. */
-export const YearFileQuery = YearQuery.extend({ workers: z.enum(["number", "name"]).default("number") });
+export const YearFileQuery = YearQuery.extend({
+  workers: z.enum(["number", "name"]).default("number"),
+});
 export const GapsView = z.object({
   counts: z.array(z.object({ kind: GapKind, count: z.number() })),
-  months: z.array(z.object({
-    month: z.number(), days: z.number(), over: z.number(), cantTell: z.number(), notAssessed: z.number(), overOutside: z.number(), cantTellOutside: z.number(),
-    protectorFault: z.number(), corrected: z.number(), medianAtEarDb: z.number().nullable(), medianOutsideDb: z.number().nullable(),
-  })),
+  months: z.array(
+    z.object({
+      month: z.number(),
+      days: z.number(),
+      over: z.number(),
+      cantTell: z.number(),
+      notAssessed: z.number(),
+      overOutside: z.number(),
+      cantTellOutside: z.number(),
+      protectorFault: z.number(),
+      corrected: z.number(),
+      medianAtEarDb: z.number().nullable(),
+      medianOutsideDb: z.number().nullable(),
+    }),
+  ),
   years: z.array(z.number()),
   ruleSets: z.array(z.object({ key: z.string(), version: z.number() })),
 });
 export type GapsView = z.infer<typeof GapsView>;
 export const GapNamesQuery = YearQuery.extend({ kind: GapKind });
-export const GapNames = z.object({ rows: z.array(z.object({ id: z.uuid(), name: z.string(), employeeNumber: z.string(), note: z.string().nullable(), date: IsoDate.nullable() })) });
+export const GapNames = z.object({
+  rows: z.array(
+    z.object({
+      id: z.uuid(),
+      name: z.string(),
+      employeeNumber: z.string(),
+      note: z.string().nullable(),
+      date: IsoDate.nullable(),
+    }),
+  ),
+});

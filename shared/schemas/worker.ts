@@ -20,7 +20,13 @@ export const WorkerInput = z
   })
   .check((context) => {
     const { hiredOn, leftOn } = context.value;
-    if (leftOn !== null && leftOn < hiredOn) context.issues.push({ code: "custom", input: leftOn, path: ["leftOn"], params: { code: "left-before-hired", hiredOn } });
+    if (leftOn !== null && leftOn < hiredOn)
+      context.issues.push({
+        code: "custom",
+        input: leftOn,
+        path: ["leftOn"],
+        params: { code: "left-before-hired", hiredOn },
+      });
   });
 export type WorkerInput = z.infer<typeof WorkerInput>;
 
@@ -65,19 +71,39 @@ export const AssignmentView = z.object({
 export type AssignmentView = z.infer<typeof AssignmentView>;
 export const AssignmentList = z.object({ rows: z.array(AssignmentView) });
 
-export const AssignmentInput = z.object({
-  taskId: z.uuid().nullable().default(null),
-  areaId: z.uuid().nullable().default(null),
-  innerModelId: z.uuid(),
-  outerModelId: z.uuid().nullable().default(null),
-  fromDate: IsoDate,
-  toDate: IsoDate.nullable().default(null),
-}).check((context) => {
-  const { taskId, areaId, innerModelId, outerModelId, fromDate, toDate } = context.value;
-  if (taskId && areaId) context.issues.push({ code: "custom", input: areaId, path: ["areaId"], params: { code: "one-use-only" } });
-  if (innerModelId === outerModelId) context.issues.push({ code: "custom", input: outerModelId, path: ["outerModelId"], params: { code: "same-protector-twice" } });
-  if (toDate !== null && toDate < fromDate) context.issues.push({ code: "custom", input: toDate, path: ["toDate"], params: { code: "ends-before-start" } });
-});
+export const AssignmentInput = z
+  .object({
+    taskId: z.uuid().nullable().default(null),
+    areaId: z.uuid().nullable().default(null),
+    innerModelId: z.uuid(),
+    outerModelId: z.uuid().nullable().default(null),
+    fromDate: IsoDate,
+    toDate: IsoDate.nullable().default(null),
+  })
+  .check((context) => {
+    const { taskId, areaId, innerModelId, outerModelId, fromDate, toDate } = context.value;
+    if (taskId && areaId)
+      context.issues.push({
+        code: "custom",
+        input: areaId,
+        path: ["areaId"],
+        params: { code: "one-use-only" },
+      });
+    if (innerModelId === outerModelId)
+      context.issues.push({
+        code: "custom",
+        input: outerModelId,
+        path: ["outerModelId"],
+        params: { code: "same-protector-twice" },
+      });
+    if (toDate !== null && toDate < fromDate)
+      context.issues.push({
+        code: "custom",
+        input: toDate,
+        path: ["toDate"],
+        params: { code: "ends-before-start" },
+      });
+  });
 export type AssignmentInput = z.infer<typeof AssignmentInput>;
 /** The same assignment for many workers at once: all of them or none. */
 export const ManyAssignmentsInput = z
@@ -85,7 +111,13 @@ export const ManyAssignmentsInput = z
   .check((context) => {
     const { workerIds } = context.value;
     workerIds.forEach((workerId, index) => {
-      if (workerIds.indexOf(workerId) < index) context.issues.push({ code: "custom", input: workerId, path: ["workerIds", index], params: { code: "worker-twice" } });
+      if (workerIds.indexOf(workerId) < index)
+        context.issues.push({
+          code: "custom",
+          input: workerId,
+          path: ["workerIds", index],
+          params: { code: "worker-twice" },
+        });
     });
   });
 export type ManyAssignmentsInput = z.infer<typeof ManyAssignmentsInput>;
@@ -108,7 +140,15 @@ export const WorkerView = z.object({
   personalTargetDb: z.number().nullable(),
   /** Null unless the reader is an officer. */
   requirementReason: z.string().nullable(),
-  crews: z.array(z.object({ id: z.uuid(), name: z.string(), fromDate: IsoDate, toDate: IsoDate.nullable(), isLoan: z.boolean() })),
+  crews: z.array(
+    z.object({
+      id: z.uuid(),
+      name: z.string(),
+      fromDate: IsoDate,
+      toDate: IsoDate.nullable(),
+      isLoan: z.boolean(),
+    }),
+  ),
   assignments: z.array(AssignmentView),
   hasSignIn: z.boolean(),
   revision: z.number(),
@@ -116,12 +156,24 @@ export const WorkerView = z.object({
 });
 export type WorkerView = z.infer<typeof WorkerView>;
 
-export const HistoryFilter = PageQuery.extend({ from: IsoDate.optional(), to: IsoDate.optional(), limit: z.coerce.number().int().min(1).max(400).default(60) });
-export const HistoryPage = pageOf(DayFigures.extend({ shiftMin: z.number(), isStale: z.boolean() }));
+export const HistoryFilter = PageQuery.extend({
+  from: IsoDate.optional(),
+  to: IsoDate.optional(),
+  limit: z.coerce.number().int().min(1).max(400).default(60),
+});
+export const HistoryPage = pageOf(
+  DayFigures.extend({ shiftMin: z.number(), isStale: z.boolean() }),
+);
 export const SignInCodeView = z.object({ code: z.string(), expiresAt: z.string() });
 
 /** Workers by name and number only, for whoever links sign-ins to them. */
-export const WorkerName = z.object({ id: z.uuid(), siteId: z.uuid(), name: z.string(), employeeNumber: z.string(), hasSignIn: z.boolean() });
+export const WorkerName = z.object({
+  id: z.uuid(),
+  siteId: z.uuid(),
+  name: z.string(),
+  employeeNumber: z.string(),
+  hasSignIn: z.boolean(),
+});
 export type WorkerName = z.infer<typeof WorkerName>;
 export const WorkerNameFilter = z.object({ search: z.string().trim().min(1).max(100) });
 export const WorkerNameList = z.object({ rows: z.array(WorkerName) });

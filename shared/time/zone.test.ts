@@ -3,13 +3,21 @@ import { addDays, atLocalTime, localDate, localTime } from "./zone";
 
 describe("local time in a zone (transitions from the IANA time zone database)", () => {
   test("an ordinary evening", () => {
-    expect(atLocalTime("2026-11-30", "22:00", "Europe/London")).toEqual({ kind: "one", instant: new Date("2026-11-30T22:00:00Z") });
-    expect(atLocalTime("2026-07-01", "06:00", "America/Chicago")).toEqual({ kind: "one", instant: new Date("2026-07-01T11:00:00Z") });
+    expect(atLocalTime("2026-11-30", "22:00", "Europe/London")).toEqual({
+      kind: "one",
+      instant: new Date("2026-11-30T22:00:00Z"),
+    });
+    expect(atLocalTime("2026-07-01", "06:00", "America/Chicago")).toEqual({
+      kind: "one",
+      instant: new Date("2026-07-01T11:00:00Z"),
+    });
   });
 
   test("summer time ends: 01:30 comes twice in London on 25 October 2026", () => {
     expect(atLocalTime("2026-10-25", "01:30", "Europe/London")).toEqual({
-      kind: "twice", first: new Date("2026-10-25T00:30:00Z"), second: new Date("2026-10-25T01:30:00Z"),
+      kind: "twice",
+      first: new Date("2026-10-25T00:30:00Z"),
+      second: new Date("2026-10-25T01:30:00Z"),
     });
   });
 
@@ -18,7 +26,10 @@ describe("local time in a zone (transitions from the IANA time zone database)", 
   });
 
   test("half-hour zones and zones without summer time", () => {
-    expect(atLocalTime("2026-12-01", "06:00", "Asia/Kolkata")).toEqual({ kind: "one", instant: new Date("2026-12-01T00:30:00Z") });
+    expect(atLocalTime("2026-12-01", "06:00", "Asia/Kolkata")).toEqual({
+      kind: "one",
+      instant: new Date("2026-12-01T00:30:00Z"),
+    });
     expect(localDate(new Date("2026-11-30T18:31:00Z"), "Asia/Kolkata")).toBe("2026-12-01");
     expect(localTime(new Date("2026-11-30T18:31:00Z"), "Asia/Kolkata")).toBe("00:01");
   });

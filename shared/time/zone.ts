@@ -18,7 +18,10 @@ export function atLocalTime(date: string, time: string, timeZone: string): Local
   const asUtc = Date.parse(`${date}T${time}:00Z`);
   const dayMs = 86_400_000;
   const minuteMs = 60_000;
-  const offsets = [tzOffset(timeZone, new Date(asUtc - dayMs)), tzOffset(timeZone, new Date(asUtc + dayMs))];
+  const offsets = [
+    tzOffset(timeZone, new Date(asUtc - dayMs)),
+    tzOffset(timeZone, new Date(asUtc + dayMs)),
+  ];
   const found = [...new Set(offsets.map((offset) => asUtc - offset * minuteMs))]
     .filter((instant) => instant + tzOffset(timeZone, new Date(instant)) * minuteMs === asUtc)
     .sort((a, b) => a - b)

@@ -32,7 +32,7 @@ import { Button } from "./button";
  * What a field's own parser says no with travels to the form's resolver in place of a value. A class, because the form
  * library copies plain objects and keeps the instances of classes.
  */
-class Unreadable {
+export class Unreadable {
   constructor(
     readonly code: FieldIssue["code"],
     readonly text: string,

@@ -1,7 +1,14 @@
 import { useLingui } from "@lingui/react";
 import { useMutation, useQuery } from "@tanstack/react-query";
 import { WorkerCodeInput } from "../../shared/schemas/session";
-import { Form, FormActions, showIssuesOn, SubmitButton, TextField, useSchemaForm } from "../components/form";
+import {
+  Form,
+  FormActions,
+  SubmitButton,
+  showIssuesOn,
+  TextField,
+  useSchemaForm,
+} from "../components/form";
 import { LangSwitch } from "../components/lang-switch";
 import { TextButton } from "../components/link";
 import { Page, PageBody, PageHead, RunningHead, Section } from "../components/page";
@@ -14,7 +21,11 @@ export function Component() {
   const { data } = useQuery(sessionQuery);
   const form = useSchemaForm(WorkerCodeInput, { defaultValues: { employeeNumber: "", code: "" } });
   const bind = useMutation({
-    mutationFn: (body: unknown) => api.post("/auth/worker-code", { body, schema: { parse: (value) => value as { returnTo: string } } }),
+    mutationFn: (body: unknown) =>
+      api.post("/auth/worker-code", {
+        body,
+        schema: { parse: (value) => value as { returnTo: string } },
+      }),
     onSuccess: ({ returnTo }) => window.location.assign(returnTo),
     onError: showIssuesOn(form, i18n),
   });
@@ -23,19 +34,32 @@ export function Component() {
       <PageBody>
         <PageHead
           title={i18n.t("You have no access here yet")}
-          lead={i18n.t("{name}, your sign-in is known, but nobody has given you a role in Dinward. Ask your safety officer or your administrator.", { name: data?.pendingName ?? i18n.t("Hello") })}
+          lead={i18n.t(
+            "{name}, your sign-in is known, but nobody has given you a role in Dinward. Ask your safety officer or your administrator.",
+            { name: data?.pendingName ?? i18n.t("Hello") },
+          )}
         />
         <Section title={i18n.t("I have a code on paper")} id="code">
-          <Form onSubmit={form.handleSubmit((body) => bind.mutate(body))} aria-label={i18n.t("Code on paper")}>
+          <Form
+            onSubmit={form.handleSubmit((body) => bind.mutate(body))}
+            aria-label={i18n.t("Code on paper")}
+          >
             <TextField form={form} name="employeeNumber" label={i18n.t("Employee number")} />
-            <TextField form={form} name="code" label={i18n.t("Code")} note={i18n.t("Twelve letters and figures; it works once.")} />
+            <TextField
+              form={form}
+              name="code"
+              label={i18n.t("Code")}
+              note={i18n.t("Twelve letters and figures; it works once.")}
+            />
             <FormActions>
               <SubmitButton isBusy={bind.isPending}>{i18n.t("This is me")}</SubmitButton>
             </FormActions>
           </Form>
         </Section>
         <p>
-          <TextButton onClick={() => void signOut()}>{i18n.t("Sign out and use another sign-in")}</TextButton>
+          <TextButton onClick={() => void signOut()}>
+            {i18n.t("Sign out and use another sign-in")}
+          </TextButton>
         </p>
       </PageBody>
     </Page>

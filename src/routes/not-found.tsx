@@ -7,7 +7,10 @@ export function Component() {
   const { i18n } = useLingui();
   return (
     <PageBody>
-      <PageHead title={i18n.t("There is no such page")} lead={i18n.t("The address is wrong, or what it named is gone.")} />
+      <PageHead
+        title={i18n.t("There is no such page")}
+        lead={i18n.t("The address is wrong, or what it named is gone.")}
+      />
       <p>
         <TextLink to={paths.home}>{i18n.t("To your first page")}</TextLink>
       </p>

@@ -1,3 +1,18 @@
 import type { RouteObject } from "react-router-dom";
+import { paths } from "../paths";
 
-export const officerRoutes: RouteObject[] = [];
+export const officerRoutes: RouteObject[] = [
+  { path: paths.waiting, lazy: () => import("./waiting-page") },
+  { path: paths.findings, lazy: () => import("./findings-page") },
+  { path: paths.finding(":id"), lazy: () => import("./finding-page") },
+  { path: paths.workers, lazy: () => import("./workers-page") },
+  { path: paths.newWorker, lazy: () => import("./worker-form-page") },
+  { path: paths.changeWorker(":id"), lazy: () => import("./worker-form-page") },
+  { path: paths.worker(":id"), lazy: () => import("./worker-page") },
+  { path: paths.result(":id", ":date"), lazy: () => import("./result-page") },
+  { path: paths.storedResult(":id"), lazy: () => import("./result-page") },
+  { path: paths.shift(":id"), lazy: () => import("./shift-page") },
+  { path: paths.runs, lazy: () => import("./runs-page") },
+  { path: paths.newRun, lazy: () => import("./run-page") },
+  { path: paths.run(":id"), lazy: () => import("./run-page") },
+];

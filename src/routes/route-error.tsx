@@ -14,7 +14,11 @@ export function RouteError() {
   return (
     <Page head={<RunningHead />}>
       <PageBody>
-        <PageHead title={isMissing ? i18n.t("There is no such page") : i18n.t("This page could not be shown")} />
+        <PageHead
+          title={
+            isMissing ? i18n.t("There is no such page") : i18n.t("This page could not be shown")
+          }
+        />
         <Failed onRetry={() => window.location.reload()}>{problemText(i18n, error)}</Failed>
         <p>
           <TextLink to={paths.home}>{i18n.t("To your first page")}</TextLink>

@@ -16,11 +16,16 @@ export function Component() {
           lead={
             search.has("failed")
               ? i18n.t("The sign-in was not completed. Nothing has happened; try again.")
-              : i18n.t("Noise at work and hearing protectors: who was in how much, what reached the ear, what to do.")
+              : i18n.t(
+                  "Noise at work and hearing protectors: who was in how much, what reached the ear, what to do.",
+                )
           }
         />
         <p>
-          <a className="button is-primary" href={`/api/auth/sign-in?returnTo=${encodeURIComponent(returnTo)}`}>
+          <a
+            className="button is-primary"
+            href={`/api/auth/sign-in?returnTo=${encodeURIComponent(returnTo)}`}
+          >
             {i18n.t("Go to sign-in")}
           </a>
         </p>

@@ -5,8 +5,8 @@ import { ConnectionBanner } from "../components/connection-banner";
 import { LangSwitch } from "../components/lang-switch";
 import { TextButton } from "../components/link";
 import { type NavItem, Page, RunningHead } from "../components/page";
-import { hasRole, signOut, useUser } from "../features/session/session";
 import { SearchBox } from "../features/session/search-box";
+import { hasRole, signOut, useUser } from "../features/session/session";
 import { paths } from "../paths";
 
 /** The pages of each role, those of several roles one after the other. */
@@ -43,14 +43,20 @@ export function SignedIn() {
     <Page
       head={
         <>
-          <ConnectionBanner signInTo={`${paths.signIn}?returnTo=${encodeURIComponent(pathname + search)}`} />
+          <ConnectionBanner
+            signInTo={`${paths.signIn}?returnTo=${encodeURIComponent(pathname + search)}`}
+          />
           <RunningHead
             items={isPlain ? [] : items}
             title={hasRole(user, "worker") && isPlain ? user.name : "Dinward"}
             account={
               <>
                 {hasRole(user, "officer", "auditor") && <SearchBox />}
-                {!isPlain && <span className="account-site">{user.sites.length === 1 ? user.sites[0]?.name : user.organizationName}</span>}
+                {!isPlain && (
+                  <span className="account-site">
+                    {user.sites.length === 1 ? user.sites[0]?.name : user.organizationName}
+                  </span>
+                )}
                 {!(hasRole(user, "worker") && isPlain) && <b>{user.name}</b>}
                 <LangSwitch />
                 <TextButton onClick={() => void signOut()}>{i18n.t("Sign out")}</TextButton>

@@ -9,7 +9,10 @@ export function Component() {
   return (
     <Page head={<RunningHead account={<LangSwitch />} />}>
       <PageBody>
-        <PageHead title={i18n.t("You are signed out")} lead={i18n.t("Here and at the sign-in service.")} />
+        <PageHead
+          title={i18n.t("You are signed out")}
+          lead={i18n.t("Here and at the sign-in service.")}
+        />
         <p>
           <ButtonLink to={paths.signIn} reloadDocument>
             {i18n.t("Sign in again")}

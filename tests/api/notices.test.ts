@@ -3,7 +3,18 @@ import { readConfig } from "../../server/config";
 import { lookAfter } from "../../server/jobs/look-after";
 import { sendNotice } from "../../server/jobs/send-notice";
 import { Mailer } from "../../server/lib/mailer";
-import { buildCrew, buildJob, buildOrganization, buildSite, buildTask, buildUser, buildWorker, daysFromToday, select, signInAs } from "../factories";
+import {
+  buildCrew,
+  buildJob,
+  buildOrganization,
+  buildSite,
+  buildTask,
+  buildUser,
+  buildWorker,
+  daysFromToday,
+  select,
+  signInAs,
+} from "../factories";
 import { Mailbox } from "../setup/services";
 
 const mailbox = new Mailbox(inject("services").mailsUrl);
@@ -23,28 +34,64 @@ interface Row {
 /** A worker in noise without a protector, saved by the officer: three people are to be told. */
 async function buildNotices() {
   const { id: organizationId } = await buildOrganization();
-  const site = await buildSite({ organizationId, governingRuleSet: "uk-2005", timeZone: "Europe/London" });
+  const site = await buildSite({
+    organizationId,
+    governingRuleSet: "uk-2005",
+    timeZone: "Europe/London",
+  });
   const task = await buildTask({ site, name: "Run-up", levelDb: 98, metric: { kind: "steady" } });
   const job = await buildJob({ site, tasks: [{ taskId: task.id, durationMin: 480 }] });
-  const workers = [await buildWorker({ site, jobId: job.id, name: "R. Szabó" }), await buildWorker({ site, jobId: job.id, name: "D. Tavernor" })];
+  const workers = [
+    await buildWorker({ site, jobId: job.id, name: "R. Szabó" }),
+    await buildWorker({ site, jobId: job.id, name: "D. Tavernor" }),
+  ];
   const officer = await buildUser({ organizationId, roles: ["officer"], name: "S. Ferrand" });
   const supervisor = await buildUser({ organizationId, roles: ["supervisor"], language: "de" });
   const told = await buildUser({ organizationId, roles: ["worker"], workerId: workers[0]!.id });
   const crew = await buildCrew({ site, members: workers, supervisors: [supervisor] });
   const client = await signInAs(officer);
-  const row = (workerId: string, more: object = {}) => ({ kind: "worked", workerId, localStart: "06:00", lengthMin: 480, tasks: [{ taskId: task.id, durationMin: 480 }], ...more });
-  const save = (rows: object[]) => client.post(`/crews/${crew.id}/day`, { date: daysFromToday(-1), rows });
+  const row = (workerId: string, more: object = {}) => ({
+    kind: "worked",
+    workerId,
+    localStart: "06:00",
+    lengthMin: 480,
+    tasks: [{ taskId: task.id, durationMin: 480 }],
+    ...more,
+  });
+  const save = (rows: object[]) =>
+    client.post(`/crews/${crew.id}/day`, { date: daysFromToday(-1), rows });
   const saved = await save(workers.map(({ id }) => row(id)));
   const { entryId } = saved.body;
-  const notices = () => select<Row>("SELECT * FROM notices WHERE organization_id = $1 AND state <> 'withdrawn' ORDER BY created_at, audience", [organizationId]);
+  const notices = () =>
+    select<Row>(
+      "SELECT * FROM notices WHERE organization_id = $1 AND state <> 'withdrawn' ORDER BY created_at, audience",
+      [organizationId],
+    );
   const send = ({ id }: Row) => sendNotice({ organizationId, noticeId: id }, mailer, PUBLIC_URL);
-  return { organizationId, client, entryId, saved, save, row, workers, officer, supervisor, told, notices, send };
+  return {
+    organizationId,
+    client,
+    entryId,
+    saved,
+    save,
+    row,
+    workers,
+    officer,
+    supervisor,
+    told,
+    notices,
+    send,
+  };
 }
 
 describe("the outbox", () => {
   test("one mail a person and entry; nothing before its time; held; sent now in the reader's language", async () => {
     const { client, entryId, notices, send, supervisor, told } = await buildNotices();
-    expect((await notices()).map(({ audience, state }) => [audience, state])).toEqual([["officer", "waiting"], ["supervisor", "waiting"], ["worker", "waiting"]]);
+    expect((await notices()).map(({ audience, state }) => [audience, state])).toEqual([
+      ["officer", "waiting"],
+      ["supervisor", "waiting"],
+      ["worker", "waiting"],
+    ]);
     for (const notice of await notices()) await send(notice);
     expect((await notices()).map(({ state }) => state)).toEqual(["waiting", "waiting", "waiting"]);
 
@@ -77,7 +124,10 @@ describe("the outbox", () => {
     await mailbox.behave("refuse");
     const [first] = await notices();
     await send(first!);
-    expect((await notices()).find(({ id }) => id === first!.id)).toMatchObject({ state: "failed", tries: 1 });
+    expect((await notices()).find(({ id }) => id === first!.id)).toMatchObject({
+      state: "failed",
+      tries: 1,
+    });
     const waiting = await client.get("/waiting");
     expect(waiting.body.troubled.map(({ id }: { id: string }) => id)).toEqual([first!.id]);
   });
@@ -88,10 +138,16 @@ describe("the outbox", () => {
     await mailbox.behave("fail-once");
     const [first] = await notices();
     await expect(send(first!)).rejects.toThrow();
-    expect((await notices()).find(({ id }) => id === first!.id)).toMatchObject({ state: "waiting", tries: 1 });
+    expect((await notices()).find(({ id }) => id === first!.id)).toMatchObject({
+      state: "waiting",
+      tries: 1,
+    });
     await mailbox.behave("accept");
     await send(first!);
-    expect((await notices()).find(({ id }) => id === first!.id)).toMatchObject({ state: "sent", tries: 2 });
+    expect((await notices()).find(({ id }) => id === first!.id)).toMatchObject({
+      state: "sent",
+      tries: 2,
+    });
   });
 
   test("an outcome nobody knows shows as possibly sent, is tried once more under the same Message-ID, and rests", async () => {
@@ -106,7 +162,9 @@ describe("the outbox", () => {
     expect(await state()).toMatchObject({ state: "possibly-sent", unknown_outcomes: 2, tries: 2 });
     await send(toWorker);
     expect(await state()).toMatchObject({ tries: 2 });
-    const ids = new Set((await mailbox.mails({ to: told.email })).map(({ messageId }) => messageId));
+    const ids = new Set(
+      (await mailbox.mails({ to: told.email })).map(({ messageId }) => messageId),
+    );
     expect([...ids].every((id) => id === toWorker.message_id)).toBe(true);
   });
 
@@ -114,22 +172,41 @@ describe("the outbox", () => {
     const { organizationId, client, entryId, notices, send } = await buildNotices();
     await client.post(`/entries/${entryId}/notices/actions`, { action: "send-now" });
     const [first] = await notices();
-    await select("UPDATE notices SET state = 'sending', tries = 1, attempted_at = now() - interval '10 minutes' WHERE id = $1", [first!.id]);
+    await select(
+      "UPDATE notices SET state = 'sending', tries = 1, attempted_at = now() - interval '10 minutes' WHERE id = $1",
+      [first!.id],
+    );
     await select("DELETE FROM graphile_worker._private_jobs");
     await lookAfter();
-    const jobs = await select<{ key: string }>("SELECT key FROM graphile_worker.jobs WHERE key = $1", [`notice:${first!.id}`]);
+    const jobs = await select<{ key: string }>(
+      "SELECT key FROM graphile_worker.jobs WHERE key = $1",
+      [`notice:${first!.id}`],
+    );
     expect(jobs).toHaveLength(1);
     await send(first!);
-    expect((await notices()).find(({ id }) => id === first!.id)).toMatchObject({ state: "sent", unknown_outcomes: 1, tries: 2 });
+    expect((await notices()).find(({ id }) => id === first!.id)).toMatchObject({
+      state: "sent",
+      unknown_outcomes: 1,
+      tries: 2,
+    });
     expect(organizationId).toBeTruthy();
   });
 
   test("a correction after sending tells the same people that it replaces the earlier", async () => {
-    const { client, entryId, notices, send, save, row, workers, told, saved } = await buildNotices();
+    const { client, entryId, notices, send, save, row, workers, told, saved } =
+      await buildNotices();
     await client.post(`/entries/${entryId}/notices/actions`, { action: "send-now" });
     for (const notice of await notices()) await send(notice);
     const { shiftId, revision } = saved.body.saved[0].shift;
-    await save([row(workers[0]!.id, { shiftId, revision, reason: "was in the control room", tasks: [], unaccounted: { how: "quiet", levelDb: 60 } })]);
+    await save([
+      row(workers[0]!.id, {
+        shiftId,
+        revision,
+        reason: "was in the control room",
+        tasks: [],
+        unaccounted: { how: "quiet", levelDb: 60 },
+      }),
+    ]);
     const correction = (await notices()).filter(({ state }) => state === "waiting");
     expect(correction.map(({ audience }) => audience)).toEqual(["officer", "supervisor", "worker"]);
     await select("UPDATE notices SET not_before = now() WHERE state = 'waiting'");
@@ -148,6 +225,8 @@ describe("the outbox", () => {
     expect(text.body.text).toContain("R. Szabó");
     const stranger = await signInAs(await buildUser({ roles: ["officer"] }));
     expect((await stranger.get(`/notices/${first!.id}`)).status).toBe(404);
-    expect((await stranger.post(`/entries/${entryId}/notices/actions`, { action: "hold" })).status).toBe(404);
+    expect(
+      (await stranger.post(`/entries/${entryId}/notices/actions`, { action: "hold" })).status,
+    ).toBe(404);
   });
 });

@@ -1,7 +1,15 @@
 import { createServer, type Server } from "node:http";
 import { afterAll, beforeAll, describe, expect, inject, test } from "vitest";
 import { readConfig } from "../../server/config";
-import { buildOrganization, buildSite, buildUser, buildWorker, select, signInAs, testApp } from "../factories";
+import {
+  buildOrganization,
+  buildSite,
+  buildUser,
+  buildWorker,
+  select,
+  signInAs,
+  testApp,
+} from "../factories";
 import { addPeople, type Person } from "../setup/services";
 import { Visitor } from "../setup/visitor";
 
@@ -9,7 +17,9 @@ const { publicUrl, peopleFolder } = inject("services");
 let server: Server;
 beforeAll(async () => {
   server = createServer(testApp());
-  await new Promise<void>((resolve) => server.listen(Number(readConfig("web").PORT), "127.0.0.1", resolve));
+  await new Promise<void>((resolve) =>
+    server.listen(Number(readConfig("web").PORT), "127.0.0.1", resolve),
+  );
 });
 afterAll(() => server.close());
 
@@ -18,15 +28,34 @@ let known = 0;
 function person(more: Partial<Person> = {}): Person {
   known += 1;
   const sub = `someone-${Date.now()}-${known}`;
-  const one: Person = { sub, email: `${sub}@dinward.example`, emailVerified: true, name: `Someone ${known}`, roles: [], language: "en", ...more };
+  const one: Person = {
+    sub,
+    email: `${sub}@dinward.example`,
+    emailVerified: true,
+    name: `Someone ${known}`,
+    roles: [],
+    language: "en",
+    ...more,
+  };
   addPeople(peopleFolder, [one], sub);
   return one;
 }
 
-const signInAddress = (returnTo = "/findings") => `${publicUrl}/api/auth/sign-in?returnTo=${encodeURIComponent(returnTo)}`;
-const session = async (visitor: Visitor) => (await visitor.request(`${publicUrl}/api/session`)).json();
-const post = (visitor: Visitor, path: string, body: object, csrf = visitor.cookie("127.0.0.1", "dinward.csrf")) =>
-  visitor.request(`${publicUrl}/api${path}`, { method: "POST", body: JSON.stringify(body), headers: { "Content-Type": "application/json", "x-csrf-token": csrf ?? "" } });
+const signInAddress = (returnTo = "/findings") =>
+  `${publicUrl}/api/auth/sign-in?returnTo=${encodeURIComponent(returnTo)}`;
+const session = async (visitor: Visitor) =>
+  (await visitor.request(`${publicUrl}/api/session`)).json();
+const post = (
+  visitor: Visitor,
+  path: string,
+  body: object,
+  csrf = visitor.cookie("127.0.0.1", "dinward.csrf"),
+) =>
+  visitor.request(`${publicUrl}/api${path}`, {
+    method: "POST",
+    body: JSON.stringify(body),
+    headers: { "Content-Type": "application/json", "x-csrf-token": csrf ?? "" },
+  });
 
 describe("sign-in", () => {
   test("asks with state, nonce and PKCE; a granted e-mail gets in, is bound to its subject, and comes back where it wanted to", async () => {
@@ -35,14 +64,17 @@ describe("sign-in", () => {
     const visitor = new Visitor();
     const asked = await visitor.request(signInAddress());
     const to = new URL(asked.headers.get("location") ?? "");
-    for (const name of ["state", "nonce", "code_challenge"]) expect(to.searchParams.get(name)?.length).toBeGreaterThan(20);
+    for (const name of ["state", "nonce", "code_challenge"])
+      expect(to.searchParams.get(name)?.length).toBeGreaterThan(20);
     expect(to.searchParams.get("code_challenge_method")).toBe("S256");
     const before = visitor.cookie("127.0.0.1", "dinward.sid");
     const { url } = await visitor.signIn(signInAddress(), sub);
     expect(url.pathname).toBe("/findings");
     expect(visitor.cookie("127.0.0.1", "dinward.sid")).not.toBe(before);
     expect((await session(visitor)).user).toMatchObject({ id: user.id, roles: ["officer"] });
-    const [bound] = await select<{ subject: string }>("SELECT subject FROM users WHERE id = $1", [user.id]);
+    const [bound] = await select<{ subject: string }>("SELECT subject FROM users WHERE id = $1", [
+      user.id,
+    ]);
     expect(bound?.subject).toBe(sub);
   });
 
@@ -85,7 +117,9 @@ describe("sign-in", () => {
     const { url } = await new Visitor().signIn(signInAddress("//evil.example/"), sub);
     expect(url.host).toBe(new URL(publicUrl).host);
     expect(url.pathname).toBe("/");
-    const answer = await new Visitor().request(`${publicUrl}/api/auth/callback?error=access_denied&state=x`);
+    const answer = await new Visitor().request(
+      `${publicUrl}/api/auth/callback?error=access_denied&state=x`,
+    );
     expect(answer.headers.get("location")).toBe("/sign-in?failed=1");
   });
 
@@ -97,7 +131,10 @@ describe("sign-in", () => {
     await select("UPDATE users SET session_epoch = session_epoch + 1 WHERE id = $1", [user.id]);
     expect((await client.get("/findings")).status).toBe(401);
     const again = await signInAs(user);
-    await select("UPDATE sessions SET sess = jsonb_set(sess::jsonb, '{startedAt}', '1')::json WHERE sess->>'userId' = $1", [user.id]);
+    await select(
+      "UPDATE sessions SET sess = jsonb_set(sess::jsonb, '{startedAt}', '1')::json WHERE sess->>'userId' = $1",
+      [user.id],
+    );
     expect((await again.get("/findings")).status).toBe(401);
     const third = await signInAs(user);
     await select("UPDATE users SET revoked_at = now() WHERE id = $1", [user.id]);
@@ -112,7 +149,11 @@ describe("sign-in", () => {
     await visitor.signIn(signInAddress(), sub);
     expect((await post(visitor, "/auth/sign-out", {}, "wrong")).status).toBe(403);
     const foreign = await visitor.request(`${publicUrl}/api/auth/sign-out`, {
-      method: "POST", headers: { "x-csrf-token": visitor.cookie("127.0.0.1", "dinward.csrf") ?? "", "sec-fetch-site": "cross-site" },
+      method: "POST",
+      headers: {
+        "x-csrf-token": visitor.cookie("127.0.0.1", "dinward.csrf") ?? "",
+        "sec-fetch-site": "cross-site",
+      },
     });
     expect(foreign.status).toBe(403);
     expect((await session(visitor)).user).not.toBeNull();
@@ -128,27 +169,41 @@ describe("sign-in", () => {
     expect(redirectTo).toContain("id_token_hint=");
     expect((await session(visitor)).user).toBeNull();
     const { url } = await visitor.open(redirectTo);
-    expect(["/signed-out", "/session/end/success"].some((end) => url.pathname.endsWith(end)) || url.pathname.includes("session/end")).toBe(true);
+    expect(
+      ["/signed-out", "/session/end/success"].some((end) => url.pathname.endsWith(end)) ||
+        url.pathname.includes("session/end"),
+    ).toBe(true);
   });
 
   test("a worker without e-mail binds the sign-in by a printed code, once", async () => {
     const site = await buildSite();
     const worker = await buildWorker({ site });
-    const officer = await signInAs(await buildUser({ organizationId: site.organizationId, roles: ["officer"] }));
+    const officer = await signInAs(
+      await buildUser({ organizationId: site.organizationId, roles: ["officer"] }),
+    );
     const { body } = await officer.post(`/workers/${worker.id}/sign-in-codes`, {});
     expect(body.code).toMatch(/\w{3,}/);
     const { sub } = person({ email: "", emailVerified: false });
     const visitor = new Visitor();
     await visitor.signIn(signInAddress(), sub);
-    const wrong = await post(visitor, "/auth/worker-code", { employeeNumber: "0", code: body.code });
+    const wrong = await post(visitor, "/auth/worker-code", {
+      employeeNumber: "0",
+      code: body.code,
+    });
     expect(wrong.status).toBe(422);
     expect((await wrong.json()).issues[0]).toMatchObject({ path: ["code"], code: "code-unknown" });
-    const right = await post(visitor, "/auth/worker-code", { employeeNumber: worker.employeeNumber, code: body.code.toLowerCase() });
+    const right = await post(visitor, "/auth/worker-code", {
+      employeeNumber: worker.employeeNumber,
+      code: body.code.toLowerCase(),
+    });
     expect(right.status).toBe(200);
     expect((await session(visitor)).user).toMatchObject({ workerId: worker.id, roles: ["worker"] });
     const other = new Visitor();
     await other.signIn(signInAddress(), person().sub);
-    const used = await post(other, "/auth/worker-code", { employeeNumber: worker.employeeNumber, code: body.code });
+    const used = await post(other, "/auth/worker-code", {
+      employeeNumber: worker.employeeNumber,
+      code: body.code,
+    });
     expect((await used.json()).issues[0].code).toBe("code-used");
   });
 
@@ -156,7 +211,8 @@ describe("sign-in", () => {
     const visitor = new Visitor();
     await visitor.signIn(signInAddress(), person().sub);
     let last: Response | undefined;
-    for (let tries = 0; tries < 12; tries += 1) last = await post(visitor, "/auth/worker-code", { employeeNumber: "1", code: "AAAA-BBBB" });
+    for (let tries = 0; tries < 12; tries += 1)
+      last = await post(visitor, "/auth/worker-code", { employeeNumber: "1", code: "AAAA-BBBB" });
     expect(last?.status).toBe(429);
     expect(await last?.json()).toMatchObject({ code: "too-many-tries", params: { minutes: 15 } });
     await select("DELETE FROM rate_limits");

@@ -3,7 +3,15 @@ import pg from "pg";
 import { describe, expect, test } from "vitest";
 import { canonicalJson, chainHash, sealEvents } from "../../server/lib/audit";
 import { execute, inTransaction, rows } from "../../server/lib/db";
-import { buildArea, buildOrganization, buildSite, buildUser, select, signInAs, testApp } from "../factories";
+import {
+  buildArea,
+  buildOrganization,
+  buildSite,
+  buildUser,
+  select,
+  signInAs,
+  testApp,
+} from "../factories";
 
 testApp();
 
@@ -24,9 +32,19 @@ async function asApplication(text: string, organizationId = ""): Promise<string>
 describe("what the database itself refuses", () => {
   test("the application's role can't change or empty a record that is append-only", async () => {
     const { id } = await buildOrganization();
-    for (const table of ["audit_events", "shift_revisions", "day_results", "task_levels", "readings", "audit_seals"]) {
+    for (const table of [
+      "audit_events",
+      "shift_revisions",
+      "day_results",
+      "task_levels",
+      "readings",
+      "audit_seals",
+    ]) {
       // 42501: insufficient privilege.
-      expect(await asApplication(`UPDATE ${table} SET organization_id = organization_id`, id), table).toBe("42501");
+      expect(
+        await asApplication(`UPDATE ${table} SET organization_id = organization_id`, id),
+        table,
+      ).toBe("42501");
       expect(await asApplication(`DELETE FROM ${table}`, id), table).toBe("42501");
       expect(await asApplication(`TRUNCATE ${table} CASCADE`, id), table).toBe("42501");
     }
@@ -34,7 +52,9 @@ describe("what the database itself refuses", () => {
 
   test("even the owner is stopped by the triggers", async () => {
     await buildSite();
-    await expect(select("UPDATE site_settings SET wear_from_db = 80")).rejects.toMatchObject({ code: "23001" });
+    await expect(select("UPDATE site_settings SET wear_from_db = 80")).rejects.toMatchObject({
+      code: "23001",
+    });
     await expect(select("TRUNCATE audit_events CASCADE")).rejects.toMatchObject({ code: "23001" });
   });
 
@@ -42,12 +62,21 @@ describe("what the database itself refuses", () => {
     const site = await buildSite();
     const other = await buildOrganization();
     const count = (organizationId?: string) =>
-      inTransaction({ organizationId, readOnly: true }, async () => (await rows<{ count: number }>("SELECT count(*)::int AS count FROM sites"))[0]?.count);
+      inTransaction(
+        { organizationId, readOnly: true },
+        async () =>
+          (await rows<{ count: number }>("SELECT count(*)::int AS count FROM sites"))[0]?.count,
+      );
     expect(await count()).toBe(0);
     expect(await count(other.id)).toBe(0);
     expect(await count(site.organizationId)).toBe(1);
     // 42501: the row-level policy refuses the new row.
-    expect(await asApplication(`INSERT INTO areas (organization_id, site_id, name) VALUES ('${site.organizationId}', '${site.id}', 'x')`, other.id)).toBe("42501");
+    expect(
+      await asApplication(
+        `INSERT INTO areas (organization_id, site_id, name) VALUES ('${site.organizationId}', '${site.id}', 'x')`,
+        other.id,
+      ),
+    ).toBe("42501");
   });
 
   test("the application's role owns no table and can't get round the policies", async () => {
@@ -64,15 +93,29 @@ describe("the trail", () => {
     const site = await buildSite({ organizationId });
     const officer = await buildUser({ organizationId, roles: ["officer"] });
     const client = await signInAs(officer);
-    for (const name of ["Test cell 1", "Test cell 2"]) expect((await client.post("/areas", { siteId: site.id, name })).status).toBe(201);
+    for (const name of ["Test cell 1", "Test cell 2"])
+      expect((await client.post("/areas", { siteId: site.id, name })).status).toBe(201);
     const seal = () => inTransaction({ organizationId }, () => sealEvents(organizationId));
     expect(await seal()).toBe(2);
     await buildArea({ site });
-    expect((await client.post("/areas", { siteId: site.id, name: "Test cell 3" })).status).toBe(201);
+    expect((await client.post("/areas", { siteId: site.id, name: "Test cell 3" })).status).toBe(
+      201,
+    );
     expect(await seal()).toBe(1);
     expect(await seal()).toBe(0);
 
-    const events = await select<{ id: string; at: string; actorId: string; action: string; subjectKind: string; subjectId: string; digest: string; hash: Buffer; salt: Buffer; recorded: unknown }>(
+    const events = await select<{
+      id: string;
+      at: string;
+      actorId: string;
+      action: string;
+      subjectKind: string;
+      subjectId: string;
+      digest: string;
+      hash: Buffer;
+      salt: Buffer;
+      recorded: unknown;
+    }>(
       `SELECT e.id::text AS id, to_char(e.at AT TIME ZONE 'UTC', 'YYYY-MM-DD"T"HH24:MI:SS.US') AS at, e.actor_id AS "actorId", e.action, e.subject_kind AS "subjectKind",
          e.subject_id AS "subjectId", encode(e.values_digest, 'hex') AS digest, s.hash, v.salt, v.recorded
        FROM audit_events e JOIN audit_seals s ON s.event_id = e.id JOIN audit_values v ON v.event_id = e.id WHERE e.organization_id = $1 ORDER BY s.number`,
@@ -84,15 +127,20 @@ describe("the trail", () => {
       hash = chainHash(hash, event) as Buffer<ArrayBuffer>;
       expect(event.hash.equals(hash)).toBe(true);
       // SHA-256 over salt and canonical JSON, taken again here by hand.
-      expect(createHash("sha256").update(event.salt).update(canonicalJson(event.recorded)).digest("hex")).toBe(event.digest);
+      expect(
+        createHash("sha256").update(event.salt).update(canonicalJson(event.recorded)).digest("hex"),
+      ).toBe(event.digest);
     }
   });
 
   test("an event of a transaction that is still open is left for the next time", async () => {
     const { id: organizationId } = await buildOrganization();
     const seal = () => inTransaction({ organizationId }, () => sealEvents(organizationId));
-    const insert = () => execute(
-      "INSERT INTO audit_events (organization_id, action, subject_kind, values_digest) VALUES ($1, 'test', 'test', '\\x00')", [organizationId]);
+    const insert = () =>
+      execute(
+        "INSERT INTO audit_events (organization_id, action, subject_kind, values_digest) VALUES ($1, 'test', 'test', '\\x00')",
+        [organizationId],
+      );
     await inTransaction({ organizationId }, async () => {
       await insert();
       const other = await new Promise<number>((resolve, reject) => {
@@ -110,7 +158,9 @@ async function sealElsewhere(organizationId: string): Promise<number> {
   await client.connect();
   try {
     await client.query("SELECT set_config('app.organization', $1, false)", [organizationId]);
-    const found = await client.query("SELECT count(*)::int AS count FROM audit_events WHERE transaction_id < pg_snapshot_xmin(pg_current_snapshot())");
+    const found = await client.query(
+      "SELECT count(*)::int AS count FROM audit_events WHERE transaction_id < pg_snapshot_xmin(pg_current_snapshot())",
+    );
     return found.rows[0].count;
   } finally {
     await client.end();

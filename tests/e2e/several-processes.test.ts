@@ -1,10 +1,17 @@
 import pg from "pg";
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
-import { type RunningApp, startApp } from "../setup/app";
 import { findFreePort, randomPort } from "../../scripts/lib/ports.mjs";
+import { type RunningApp, startApp } from "../setup/app";
 import { Visitor } from "../setup/visitor";
 
-const officer = { sub: "officer", email: "officer@dinward.example", emailVerified: true, name: "S. Ferrand", roles: ["officer"], language: "en" as const };
+const officer = {
+  sub: "officer",
+  email: "officer@dinward.example",
+  emailVerified: true,
+  name: "S. Ferrand",
+  roles: ["officer"],
+  language: "en" as const,
+};
 let app: RunningApp;
 let secondPort: number;
 let owner: pg.Client;
@@ -25,16 +32,45 @@ beforeAll(async () => {
   app.startWork();
   owner = new pg.Client({ connectionString: app.ownerUrl });
   await owner.connect();
-  organizationId = await ids("INSERT INTO organizations (name) VALUES ('Ostmere engine works') RETURNING id");
-  const siteId = await ids("INSERT INTO sites (organization_id, name, time_zone) VALUES ($1, 'Ostmere', 'Europe/London') RETURNING id", [organizationId]);
-  await ids("INSERT INTO site_settings (organization_id, site_id, number, effective_from, governing_rule_set) VALUES ($1, $2, 1, '2020-01-01', 'uk-2005') RETURNING id", [organizationId, siteId]);
-  taskId = await ids("INSERT INTO tasks (organization_id, site_id, name) VALUES ($1, $2, 'Chipping') RETURNING id", [organizationId, siteId]);
-  await ids(`INSERT INTO task_levels (organization_id, task_id, number, effective_from, metric, level_db, grade) VALUES ($1, $2, 1, '2020-01-01', '{"kind":"steady"}', 99, 'task-level') RETURNING id`, [organizationId, taskId]);
-  crewId = await ids("INSERT INTO crews (organization_id, site_id, name, usual_start, usual_length_min) VALUES ($1, $2, 'Fettling days', '06:00', 480) RETURNING id", [organizationId, siteId]);
-  workerId = await ids("INSERT INTO workers (organization_id, site_id, employee_number, name, hired_on) VALUES ($1, $2, '4417', 'D. Tavernor', '2020-01-01') RETURNING id", [organizationId, siteId]);
-  await ids("INSERT INTO crew_memberships (organization_id, crew_id, worker_id, valid) VALUES ($1, $2, $3, '[2020-01-01,)') RETURNING id", [organizationId, crewId, workerId]);
-  const userId = await ids("INSERT INTO users (organization_id, name, email) VALUES ($1, $2, $3) RETURNING id", [organizationId, officer.name, officer.email]);
-  await ids("INSERT INTO role_grants (organization_id, user_id, role) VALUES ($1, $2, 'officer') RETURNING id", [organizationId, userId]);
+  organizationId = await ids(
+    "INSERT INTO organizations (name) VALUES ('Ostmere engine works') RETURNING id",
+  );
+  const siteId = await ids(
+    "INSERT INTO sites (organization_id, name, time_zone) VALUES ($1, 'Ostmere', 'Europe/London') RETURNING id",
+    [organizationId],
+  );
+  await ids(
+    "INSERT INTO site_settings (organization_id, site_id, number, effective_from, governing_rule_set) VALUES ($1, $2, 1, '2020-01-01', 'uk-2005') RETURNING id",
+    [organizationId, siteId],
+  );
+  taskId = await ids(
+    "INSERT INTO tasks (organization_id, site_id, name) VALUES ($1, $2, 'Chipping') RETURNING id",
+    [organizationId, siteId],
+  );
+  await ids(
+    `INSERT INTO task_levels (organization_id, task_id, number, effective_from, metric, level_db, grade) VALUES ($1, $2, 1, '2020-01-01', '{"kind":"steady"}', 99, 'task-level') RETURNING id`,
+    [organizationId, taskId],
+  );
+  crewId = await ids(
+    "INSERT INTO crews (organization_id, site_id, name, usual_start, usual_length_min) VALUES ($1, $2, 'Fettling days', '06:00', 480) RETURNING id",
+    [organizationId, siteId],
+  );
+  workerId = await ids(
+    "INSERT INTO workers (organization_id, site_id, employee_number, name, hired_on) VALUES ($1, $2, '4417', 'D. Tavernor', '2020-01-01') RETURNING id",
+    [organizationId, siteId],
+  );
+  await ids(
+    "INSERT INTO crew_memberships (organization_id, crew_id, worker_id, valid) VALUES ($1, $2, $3, '[2020-01-01,)') RETURNING id",
+    [organizationId, crewId, workerId],
+  );
+  const userId = await ids(
+    "INSERT INTO users (organization_id, name, email) VALUES ($1, $2, $3) RETURNING id",
+    [organizationId, officer.name, officer.email],
+  );
+  await ids(
+    "INSERT INTO role_grants (organization_id, user_id, role) VALUES ($1, $2, 'officer') RETURNING id",
+    [organizationId, userId],
+  );
 });
 afterAll(async () => {
   await owner?.end();
@@ -59,11 +95,27 @@ describe("two web and two work processes on one database", () => {
     expect(who.user.name).toBe(officer.name);
 
     const yesterday = new Date(Date.now() - 86_400_000).toISOString().slice(0, 10);
-    const save = (base: string) => visitor.request(`${base}/api/crews/${crewId}/day`, {
-      method: "POST",
-      headers: { "content-type": "application/json", "idempotency-key": "one-saving-only", "x-csrf-token": visitor.cookie("127.0.0.1", "dinward.csrf") ?? "" },
-      body: JSON.stringify({ date: yesterday, rows: [{ kind: "worked", workerId, localStart: "06:00", lengthMin: 480, tasks: [{ taskId, durationMin: 480 }] }] }),
-    });
+    const save = (base: string) =>
+      visitor.request(`${base}/api/crews/${crewId}/day`, {
+        method: "POST",
+        headers: {
+          "content-type": "application/json",
+          "idempotency-key": "one-saving-only",
+          "x-csrf-token": visitor.cookie("127.0.0.1", "dinward.csrf") ?? "",
+        },
+        body: JSON.stringify({
+          date: yesterday,
+          rows: [
+            {
+              kind: "worked",
+              workerId,
+              localStart: "06:00",
+              lengthMin: 480,
+              tasks: [{ taskId, durationMin: 480 }],
+            },
+          ],
+        }),
+      });
     // The same click reaches both processes.
     const [first, again] = await Promise.all([save(app.url), save(second)]);
     const body = await first.json();
@@ -73,7 +125,11 @@ describe("two web and two work processes on one database", () => {
 
     const sent = await visitor.request(`${second}/api/entries/${body.entryId}/notices/actions`, {
       method: "POST",
-      headers: { "content-type": "application/json", "idempotency-key": "send-it-now", "x-csrf-token": visitor.cookie("127.0.0.1", "dinward.csrf") ?? "" },
+      headers: {
+        "content-type": "application/json",
+        "idempotency-key": "send-it-now",
+        "x-csrf-token": visitor.cookie("127.0.0.1", "dinward.csrf") ?? "",
+      },
       body: JSON.stringify({ action: "send-now" }),
     });
     expect(sent.status).toBe(201);
@@ -84,7 +140,9 @@ describe("two web and two work processes on one database", () => {
     expect(mails).toHaveLength(1);
     expect(mails[0]?.text).toContain("D. Tavernor");
     const unsealed = async () => {
-      const { rows } = await owner.query("SELECT count(*)::int AS count FROM audit_events e LEFT JOIN audit_seals s ON s.event_id = e.id WHERE s.event_id IS NULL");
+      const { rows } = await owner.query(
+        "SELECT count(*)::int AS count FROM audit_events e LEFT JOIN audit_seals s ON s.event_id = e.id WHERE s.event_id IS NULL",
+      );
       return rows[0].count === 0 ? true : undefined;
     };
     expect(await until(unsealed, "the seals")).toBe(true);
@@ -97,11 +155,16 @@ describe("two web and two work processes on one database", () => {
     await app.work.ended;
     const noticeId = await ids(
       `INSERT INTO notices (organization_id, site_id, recipient_id, entry_id, audience, state, not_before, message_id)
-       SELECT organization_id, site_id, recipient_id, gen_random_uuid(), 'officer', 'waiting', now() - interval '5 minutes', '<left-behind@dinward>' FROM notices LIMIT 1 RETURNING id`);
+       SELECT organization_id, site_id, recipient_id, gen_random_uuid(), 'officer', 'waiting', now() - interval '5 minutes', '<left-behind@dinward>' FROM notices LIMIT 1 RETURNING id`,
+    );
     await owner.query(
-      `INSERT INTO notice_items SELECT organization_id, $1, finding_id, worker_id, date, result_id FROM notice_items WHERE notice_id <> $1 LIMIT 1`, [noticeId]);
+      `INSERT INTO notice_items SELECT organization_id, $1, finding_id, worker_id, date, result_id FROM notice_items WHERE notice_id <> $1 LIMIT 1`,
+      [noticeId],
+    );
     const mails = await until(async () => {
-      const found = (await app.mailbox.mails({ to: officer.email })).filter(({ messageId }) => messageId === "<left-behind@dinward>");
+      const found = (await app.mailbox.mails({ to: officer.email })).filter(
+        ({ messageId }) => messageId === "<left-behind@dinward>",
+      );
       return found.length > 0 ? found : undefined;
     }, "the mail left behind");
     expect(mails).toHaveLength(1);

@@ -1,14 +1,16 @@
 import type { MeterSettings } from "../../../shared/acoustics/types";
 import type {
   DayGridView,
+  DaySaveView,
   GridRow,
   GridRun,
-  RowIssue,
   SavedShift,
   ShiftTaskInput,
 } from "../../../shared/schemas/shift";
 import { type Cell, type CellMark, type CellValue, cellOf, emptyCell } from "./cells";
 import { type CellId, taskCell, wornCell } from "./columns";
+
+export type RowIssue = DaySaveView["refused"][number]["issues"][number];
 
 /** What belongs to a reading beside its figure. */
 export interface ReadingSetup {
@@ -182,7 +184,7 @@ export const isSpoken = (row: RowDraft, gridRow: GridRow): boolean =>
   !isSettled(row, gridRow) && (row.isTouched || row.isConfirmed);
 
 export const hasFilledCells = (row: RowDraft): boolean =>
-  !row.isConfirmed && Object.values(row.cells).some(({ mark }) => mark === "filled");
+  !row.isConfirmed && Object.values(row.cells).some((cell) => cell?.mark === "filled");
 
 function changeRow(row: RowDraft, change: Partial<RowDraft>): RowDraft {
   return { ...row, refused: [], isTouched: true, ...change };
@@ -254,7 +256,12 @@ export function reduceDraft(draft: DayDraft, action: DraftAction): DayDraft {
         ? draft
         : { ...draft, addedTaskIds: [...draft.addedTaskIds, action.taskId] };
     case "set-cells": {
-      const byWorker = Map.groupBy(action.changes, ({ workerId }) => workerId);
+      const byWorker = new Map<string, CellChange[]>();
+      for (const one of action.changes) {
+        const known = byWorker.get(one.workerId);
+        if (known) known.push(one);
+        else byWorker.set(one.workerId, [one]);
+      }
       return {
         ...draft,
         rows: draft.rows.map((row) => {

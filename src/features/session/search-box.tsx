@@ -36,17 +36,40 @@ export function SearchBox() {
     enabled: q.length >= 2,
     placeholderData: (before) => before,
   });
-  const hits: Hit[] = !data || q.length < 2 ? [] : [
-    ...data.workers.map(({ id, name, employeeNumber }) => ({ id, label: name, note: employeeNumber, to: paths.worker(id) })),
-    ...data.crews.map(({ id, name }) => ({ id, label: name, note: i18n.t("crew"), to: paths.crew(id) })),
-    ...data.tasks.map(({ id, name }) => ({ id, label: name, note: i18n.t("task"), to: paths.task(id) })),
-    ...data.protectors.map(({ id, name }) => ({ id, label: name, note: i18n.t("protector"), to: paths.protector(id) })),
-  ];
+  const hits: Hit[] =
+    !data || q.length < 2
+      ? []
+      : [
+          ...data.workers.map(({ id, name, employeeNumber }) => ({
+            id,
+            label: name,
+            note: employeeNumber,
+            to: paths.worker(id),
+          })),
+          ...data.crews.map(({ id, name }) => ({
+            id,
+            label: name,
+            note: i18n.t("crew"),
+            to: paths.crew(id),
+          })),
+          ...data.tasks.map(({ id, name }) => ({
+            id,
+            label: name,
+            note: i18n.t("task"),
+            to: paths.task(id),
+          })),
+          ...data.protectors.map(({ id, name }) => ({
+            id,
+            label: name,
+            note: i18n.t("protector"),
+            to: paths.protector(id),
+          })),
+        ];
   const go = (hit: Hit | undefined) => {
     if (!hit) return;
     setText("");
     setIsOpen(false);
-    navigate(hit.to);
+    void navigate(hit.to);
   };
   const shows = isOpen && q.length >= 2;
   return (
@@ -77,10 +100,9 @@ export function SearchBox() {
         }}
       />
       {shows && (
-        <ul id={listId} role="listbox" aria-label={i18n.t("Found")}>
+        <div id={listId} className="search-found" role="listbox" aria-label={i18n.t("Found")}>
           {hits.map((hit, index) => (
-            // biome-ignore lint/a11y/useKeyWithClickEvents: the keyboard is the input's
-            <li
+            <div
               key={hit.id}
               id={`${listId}-${index}`}
               role="option"
@@ -92,10 +114,10 @@ export function SearchBox() {
               }}
             >
               {hit.label} <span>{hit.note}</span>
-            </li>
+            </div>
           ))}
-          {hits.length === 0 && <li className="is-empty">{i18n.t("Nothing found.")}</li>}
-        </ul>
+          {hits.length === 0 && <div className="is-empty">{i18n.t("Nothing found.")}</div>}
+        </div>
       )}
     </div>
   );

@@ -2,7 +2,8 @@ import { queryOptions, useQuery } from "@tanstack/react-query";
 import type { RoleName, SessionUser, SessionView } from "../../../shared/schemas/session";
 import { api } from "../../lib/api";
 
-const isSession = (value: unknown): value is SessionView => typeof value === "object" && value !== null && "user" in value && "pendingName" in value;
+const isSession = (value: unknown): value is SessionView =>
+  typeof value === "object" && value !== null && "user" in value && "pendingName" in value;
 
 /** Checked by hand: the first page of every role asks it, and the whole of zod would be most of that page. */
 const sessionReply = {
@@ -14,7 +15,8 @@ const sessionReply = {
 
 export const sessionQuery = queryOptions({
   queryKey: ["session"],
-  queryFn: ({ signal }) => api.get("/session", { schema: sessionReply, signal, asksWhoIsThere: true }),
+  queryFn: ({ signal }) =>
+    api.get("/session", { schema: sessionReply, signal, asksWhoIsThere: true }),
   staleTime: 60_000,
 });
 
@@ -25,9 +27,12 @@ export function useUser(): SessionUser {
   return data.user;
 }
 
-export const hasRole = (user: Pick<SessionUser, "roles">, ...roles: RoleName[]): boolean => user.roles.some((role) => roles.includes(role));
+export const hasRole = (user: Pick<SessionUser, "roles">, ...roles: RoleName[]): boolean =>
+  user.roles.some((role) => roles.includes(role));
 
 export async function signOut(): Promise<void> {
-  const { redirectTo } = await api.post("/auth/sign-out", { schema: { parse: (value) => value as { redirectTo: string } } });
+  const { redirectTo } = await api.post("/auth/sign-out", {
+    schema: { parse: (value) => value as { redirectTo: string } },
+  });
   window.location.assign(redirectTo);
 }

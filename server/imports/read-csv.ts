@@ -1,0 +1,87 @@
+import { Readable } from "node:stream";
+import { type Info, parse } from "csv-parse";
+import type { ImportIssue } from "../../shared/schemas/import";
+import { AppError } from "../lib/errors";
+import type { ImportColumn } from "./columns";
+
+export type Delimiter = "," | ";" | "\t";
+
+export interface CsvLine {
+  line: number;
+  /** Cells by column, trimmed, without the apostrophe that an export puts before a formula. */
+  cells: ReadonlyMap<string, string>;
+}
+
+export interface CsvFile {
+  delimiter: Delimiter;
+  lines: CsvLine[];
+  issues: ImportIssue[];
+}
+
+const headerName = (cell: string) => cell.trim().toLowerCase().replace(/[\s-]+/g, "_");
+
+/** The delimiter under which the header has most of the columns. */
+function delimiterOf(text: string, names: ReadonlySet<string>): Delimiter {
+  const header = /^\uFEFF?([^\r\n]*)/.exec(text)?.[1] ?? "";
+  const known = (delimiter: string) => header.split(delimiter).filter((cell) => names.has(headerName(cell.replaceAll('"', "")))).length;
+  const [best] = ([",", ";", "\t"] as const).toSorted((a, b) => known(b) - known(a));
+  return best!;
+}
+
+/** As `csv_text` in the database guards a formula. */
+const unguarded = (cell: string) => (/^'[=+@\t\r-]/.test(cell) ? cell.slice(1) : cell);
+
+function headerIssues(header: readonly string[], columns: readonly ImportColumn[]): ImportIssue[] {
+  const issues: ImportIssue[] = [];
+  const add = (field: string, code: string) => issues.push({ line: 1, field, code, params: {} });
+  const known = new Set(columns.map(({ name }) => name));
+  header.forEach((name, index) => {
+    if (!known.has(name)) add(name, "column-unknown");
+    else if (header.indexOf(name) < index) add(name, "column-twice");
+  });
+  for (const { name, isRequired } of columns) if (isRequired && !header.includes(name)) add(name, "column-missing");
+  return issues;
+}
+
+/** The pieces in which a text goes to the parser, so that a large one holds nobody else up for long. */
+function* pieces(text: string): Generator<string> {
+  for (let from = 0; from < text.length; from += 65_536) yield text.slice(from, from + 65_536);
+}
+
+/**
+ * The lines of a CSV file by the columns that its header names, in any order. Comma, semicolon and tab are recognized.
+ * What is wrong with the file's shape comes back as issues.
+ *
+ * @throws AppError too-large, beyond so many lines.
+ */
+export async function readCsv(text: string, columns: readonly ImportColumn[], linesLimit: number): Promise<CsvFile> {
+  const delimiter = delimiterOf(text, new Set(columns.map(({ name }) => name)));
+  const parser = Readable.from(pieces(text)).pipe(parse({ bom: true, delimiter, info: true, relax_column_count: true, skip_empty_lines: true }));
+  const lines: CsvLine[] = [];
+  const issues: ImportIssue[] = [];
+  let header: string[] | null = null;
+  try {
+    for await (const { record, info } of parser as AsyncIterable<{ record: string[]; info: Info<string> }>) {
+      if (!header) {
+        header = record.map(headerName);
+        issues.push(...headerIssues(header, columns));
+        if (issues.length > 0) break;
+        continue;
+      }
+      if (record.every((cell) => cell.trim() === "")) continue;
+      if (lines.length >= linesLimit) throw new AppError("too-large", 413, { linesLimit });
+      const line = info.lines;
+      if (record.length !== header.length) {
+        issues.push({ line, field: "", code: "field-count", params: { expected: header.length, found: record.length } });
+        continue;
+      }
+      lines.push({ line, cells: new Map(header.map((name, index) => [name, unguarded(record[index]!.trim())])) });
+    }
+  } catch (error) {
+    const { code, lines: line } = error as { code?: string; lines?: number };
+    if (!code?.startsWith("CSV_")) throw error;
+    issues.push({ line: line ?? 0, field: "", code: "quote-broken", params: {} });
+  }
+  if (header && lines.length === 0 && issues.length === 0) issues.push({ line: 1, field: "", code: "no-lines", params: {} });
+  return { delimiter, lines, issues };
+}

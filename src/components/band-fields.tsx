@@ -1,0 +1,155 @@
+import { useLingui } from "@lingui/react";
+import type { ReactNode } from "react";
+import { type FieldPath, type FieldValues, get, type UseFormReturn, useController } from "react-hook-form";
+import { OCTAVE_BANDS_HZ } from "../../shared/acoustics/types";
+import { parseNumber } from "../../shared/format/number";
+import { useLocale } from "../lib/i18n";
+import { Field, Unreadable } from "./form";
+import { NumberInput, type Typed } from "./number-input";
+
+export interface BandRow {
+  /** Member of the value that holds this row; without it the value is the row itself. */
+  readonly key?: string;
+  readonly label: string;
+}
+
+const COUNT = OCTAVE_BANDS_HZ.length;
+const emptyRow = (): Typed[] => Array.from({ length: COUNT }, () => null);
+
+/** Values from a spreadsheet or a report: by tabs, lines, semicolons or blanks. */
+function splitPasted(text: string): string[] {
+  return text
+    .trim()
+    .split(/[\t\n\r; ]+/)
+    .filter((part) => part !== "");
+}
+
+interface Fault {
+  band: number;
+  message: string;
+}
+
+function faultsOf(errors: unknown, path: string, missing: (hz: number) => string): Fault[] {
+  return OCTAVE_BANDS_HZ.flatMap((hz, band) => {
+    const found = get(errors, `${path}.${band}`) as { type?: string; message?: string } | undefined;
+    if (!found?.message) return [];
+    return [{ band, message: found.type === "invalid_type" ? missing(hz) : `${hz} Hz: ${found.message}` }];
+  });
+}
+
+/**
+ * One value for each octave band, in one or more rows; eight values can be pasted into any cell. All empty: not stated
+ * (null).
+ */
+export function BandFields<Values extends FieldValues, Output>({
+  form,
+  name,
+  rows,
+  label,
+  note,
+  isOptional = true,
+}: {
+  form: UseFormReturn<Values, unknown, Output>;
+  name: FieldPath<Values>;
+  rows: readonly BandRow[];
+  label: string;
+  note?: ReactNode;
+  isOptional?: boolean;
+}) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const { field } = useController({ control: form.control, name });
+  const stored = field.value as unknown;
+  const rowValues = (row: BandRow): Typed[] => {
+    const found: unknown = row.key === undefined ? stored : get(stored, row.key);
+    return Array.isArray(found) ? (found as Typed[]) : emptyRow();
+  };
+
+  function put(changed: BandRow, values: Typed[]) {
+    const all = rows.map((row) => (row === changed ? values : rowValues(row)));
+    const isEmpty = all.every((row) => row.every((value) => value === null));
+    if (isEmpty) field.onChange(null);
+    else if (changed.key === undefined) field.onChange(values);
+    else field.onChange(Object.fromEntries(rows.map((row, index) => [row.key, all[index]])));
+  }
+
+  function paste(row: BandRow, band: number, text: string): boolean {
+    const parts = splitPasted(text);
+    if (parts.length < 2) return false;
+    const values = [...rowValues(row)];
+    // Eight values are the whole row, and seven the row from 125 Hz on, wherever they were pasted.
+    const from = parts.length === COUNT ? 0 : parts.length === COUNT - 1 ? 1 : band;
+    parts.slice(0, COUNT - from).forEach((part, index) => {
+      const parsed = parseNumber(part, locale);
+      values[from + index] =
+        parsed.kind === "ok"
+          ? parsed.value
+          : new Unreadable(parsed.kind === "ambiguous" ? "ambiguous" : "not-a-number", part);
+    });
+    put(row, values);
+    return true;
+  }
+
+  const { errors } = form.formState;
+  const missing = (hz: number) => i18n.t("The {hz} Hz band is missing.", { hz });
+  const faults = rows.map((row) =>
+    faultsOf(errors, row.key === undefined ? name : `${name}.${row.key}`, missing),
+  );
+  const own = get(errors, name) as { message?: unknown } | undefined;
+  const rowErrors = rows.map((row) =>
+    row.key === undefined ? undefined : (get(errors, `${name}.${row.key}`) as { message?: unknown }),
+  );
+  const messages = [
+    ...[own, ...rowErrors].flatMap((error) =>
+      typeof error?.message === "string" ? [error.message] : [],
+    ),
+    ...faults.flat().map(({ message }) => message),
+  ];
+
+  return (
+    <Field
+      label={label}
+      note={note}
+      isOptional={isOptional}
+      isGroup
+      error={messages.length > 0 ? messages.join(" ") : undefined}
+    >
+      {(wires) => (
+        <div className="band-fields">
+          {rows.map((row, rowIndex) => (
+            <fieldset key={row.key ?? "row"}>
+              <legend className={rows.length === 1 ? "sr-only" : undefined}>{row.label}</legend>
+              <div className="band-cells">
+                {OCTAVE_BANDS_HZ.map((hz, band) => (
+                  <label key={hz}>
+                    <span>{hz >= 1000 ? `${hz / 1000} k` : hz}</span>
+                    <NumberInput
+                      className="input band-input"
+                      aria-label={i18n.t("{row}, {hz} Hz", { row: row.label, hz })}
+                      aria-invalid={
+                        faults[rowIndex]?.some((fault) => fault.band === band) || undefined
+                      }
+                      aria-describedby={wires["aria-describedby"]}
+                      value={rowValues(row)[band]}
+                      onValue={(value) =>
+                        put(
+                          row,
+                          rowValues(row).map((before, at) => (at === band ? value : before)),
+                        )
+                      }
+                      onPaste={(event) => {
+                        if (paste(row, band, event.clipboardData.getData("text")))
+                          event.preventDefault();
+                      }}
+                      onBlur={field.onBlur}
+                    />
+                  </label>
+                ))}
+              </div>
+            </fieldset>
+          ))}
+        </div>
+      )}
+    </Field>
+  );
+}

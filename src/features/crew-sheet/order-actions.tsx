@@ -1,0 +1,192 @@
+import { useLingui } from "@lingui/react";
+import { type FormEvent, useId, useState } from "react";
+import { findingStateWord } from "../../../shared/findings/words";
+import { Button } from "../../components/button";
+import { TextButton } from "../../components/link";
+import { useChangeKey } from "../../lib/change-key";
+import { problemText } from "../../lib/problem-text";
+import { type OrderStep, type SheetOrder, useOrderStep } from "./queries";
+import { currentFinding, StaleOrder } from "./stale-order";
+
+/** A reason of two letters says nothing; the server asks for three as well. */
+const SHORTEST_REASON = 3;
+
+/** Sends steps on an order, asks where somebody was quicker, and says what went wrong in its place. */
+export function useSendStep(crewId: string, order: Pick<SheetOrder, "findingId" | "revision">) {
+  const { i18n } = useLingui();
+  const { keyFor, settle } = useChangeKey();
+  const change = useOrderStep(crewId, order.findingId);
+  const [asked, setAsked] = useState<OrderStep | null>(null);
+  const current = asked ? currentFinding(change.error) : null;
+
+  const send = (step: OrderStep, onSent: () => void, revision = order.revision) => {
+    setAsked(step);
+    change.mutate(
+      { step, revision, idempotencyKey: keyFor({ step, revision }) },
+      {
+        onSuccess: () => {
+          settle();
+          setAsked(null);
+          onSent();
+        },
+      },
+    );
+  };
+  const forget = () => {
+    setAsked(null);
+    change.reset();
+  };
+  return {
+    send,
+    forget,
+    asked,
+    current,
+    isBusy: change.isPending,
+    error: change.isError && !current ? problemText(i18n, change.error) : null,
+  };
+}
+
+/** Mark done, large enough for a hand in a glove, and Can’t, because… beneath it. */
+export function OrderActions({
+  crewId,
+  order,
+  workerName,
+  onStale,
+  children,
+}: {
+  crewId: string;
+  order: SheetOrder;
+  workerName: string;
+  /** The sheet is out of date: it is to be read again. */
+  onStale: () => void;
+  /** What was noticed: between the order with its button and the second way out. */
+  children: [order: React.ReactNode, noticed: React.ReactNode];
+}) {
+  const { i18n } = useLingui();
+  const { send, forget, asked, current, isBusy, error } = useSendStep(crewId, order);
+  const [isRefusing, setIsRefusing] = useState(false);
+  const [text, setText] = useState("");
+  const [isTooShort, setIsTooShort] = useState(false);
+  const [said, setSaid] = useState("");
+  const id = useId();
+
+  function submit(event: FormEvent) {
+    event.preventDefault();
+    const reason = text.trim();
+    setIsTooShort(reason.length < SHORTEST_REASON);
+    if (reason.length < SHORTEST_REASON) {
+      document.getElementById(`${id}-reason`)?.focus();
+      return;
+    }
+    send({ kind: "cannot", text: reason }, () => {
+      setIsRefusing(false);
+      setText("");
+      setSaid(i18n.t("Your reason is with the officer."));
+    });
+  }
+
+  const [orderText, noticed] = children;
+  return (
+    <>
+      <div className="sheet-order">
+        <div className="sheet-order-words">{orderText}</div>
+        {order.canMarkDone ? (
+          <Button
+            kind="big"
+            size="supervisor"
+            isBusy={isBusy && asked?.kind === "mark-done"}
+            aria-label={i18n.t("Mark done: {name}", { name: workerName })}
+            onClick={() =>
+              send({ kind: "mark-done", text: "" }, () =>
+                setSaid(i18n.t("The officer checks it.")),
+              )
+            }
+          >
+            {i18n.t("Mark done")}
+          </Button>
+        ) : (
+          <span className="sheet-state">{findingStateWord(i18n, order.state)}</span>
+        )}
+      </div>
+      <p className="sheet-noticed">{noticed}</p>
+      {order.canMarkDone && !isRefusing && (
+        <TextButton
+          className="sheet-cannot"
+          aria-label={i18n.t("Can’t, because… {name}", { name: workerName })}
+          onClick={() => setIsRefusing(true)}
+        >
+          {i18n.t("Can’t, because…")}
+        </TextButton>
+      )}
+      {isRefusing && (
+        <form className="sheet-form" onSubmit={submit} noValidate>
+          <label htmlFor={`${id}-reason`}>{i18n.t("Why can’t it be done?")}</label>
+          <textarea
+            id={`${id}-reason`}
+            className="input"
+            rows={3}
+            maxLength={2000}
+            // biome-ignore lint/a11y/noAutofocus: it was just asked for
+            autoFocus
+            aria-required="true"
+            aria-invalid={isTooShort || undefined}
+            aria-describedby={isTooShort ? `${id}-error` : undefined}
+            value={text}
+            onChange={(event) => setText(event.target.value)}
+          />
+          {isTooShort && (
+            <p className="field-error" id={`${id}-error`}>
+              {i18n.t("Say it in a few words.")}
+            </p>
+          )}
+          <div className="sheet-form-actions">
+            <Button type="submit" kind="primary" size="supervisor" isBusy={isBusy}>
+              {i18n.t("Send to the officer")}
+            </Button>
+            <Button
+              size="supervisor"
+              onClick={() => {
+                setIsRefusing(false);
+                setIsTooShort(false);
+                forget();
+              }}
+            >
+              {i18n.t("Cancel")}
+            </Button>
+          </div>
+        </form>
+      )}
+      {error && (
+        <p className="field-error" role="alert">
+          {error}
+        </p>
+      )}
+      <p className="status sheet-said" role="status">
+        {said}
+      </p>
+      {current && asked && (
+        <StaleOrder
+          current={current}
+          step={asked}
+          workerName={workerName}
+          isBusy={isBusy}
+          onKeep={() => {
+            forget();
+            setIsRefusing(false);
+            onStale();
+          }}
+          onSend={() =>
+            send(
+              asked,
+              () => {
+                setIsRefusing(false);
+                setText("");
+              },
+              current.revision,
+            )
+          }
+        />
+      )}
+    </>
+  );
+}

@@ -1,0 +1,75 @@
+import { queryOptions, useMutation, useQueryClient } from "@tanstack/react-query";
+import { CrewList, type CrewSheetRow, CrewSheetView } from "../../../shared/schemas/crew";
+import { type FindingStepInput, FindingView } from "../../../shared/schemas/finding";
+import { api } from "../../lib/api";
+
+export const crewSheetQueries = {
+  all: ["crew-sheet"] as const,
+  crews: queryOptions({
+    queryKey: ["crew-sheet", "crews"],
+    queryFn: ({ signal }) => api.get("/crews", { schema: CrewList, signal }),
+    select: ({ rows }) => rows.filter(({ isArchived }) => !isArchived),
+  }),
+  sheet: (crewId: string) =>
+    queryOptions({
+      queryKey: ["crew-sheet", "of", crewId],
+      queryFn: ({ signal }) => api.get(`/crews/${crewId}/sheet`, { schema: CrewSheetView, signal }),
+    }),
+  order: (findingId: string) =>
+    queryOptions({
+      queryKey: ["crew-sheet", "order", findingId],
+      queryFn: ({ signal }) => api.get(`/findings/${findingId}`, { schema: FindingView, signal }),
+    }),
+};
+
+export type SheetOrder = NonNullable<CrewSheetRow["order"]>;
+export type OrderStep = Extract<FindingStepInput, { kind: "mark-done" | "cannot" | "comment" }>;
+
+const withStep = (rows: readonly CrewSheetRow[], finding: FindingView): CrewSheetRow[] =>
+  rows.map((row) =>
+    row.order?.findingId === finding.id
+      ? {
+          ...row,
+          order: {
+            ...row.order,
+            state: finding.state,
+            revision: finding.revision,
+            canMarkDone: finding.can.markDone && !["done", "closed"].includes(finding.state),
+          },
+        }
+      : row,
+  );
+
+/** One step on an order. It names the revision that was on the sheet; the row changes in its place and does not jump. */
+export function useOrderStep(crewId: string, findingId: string) {
+  const client = useQueryClient();
+  return useMutation({
+    mutationFn: ({
+      step,
+      revision,
+      idempotencyKey,
+    }: {
+      step: OrderStep;
+      revision: number;
+      idempotencyKey: string;
+    }) =>
+      api.post(`/findings/${findingId}/steps`, {
+        body: step,
+        ifMatch: String(revision),
+        idempotencyKey,
+        schema: FindingView,
+      }),
+    onSuccess: (finding) => {
+      client.setQueryData(crewSheetQueries.sheet(crewId).queryKey, (sheet) =>
+        sheet
+          ? {
+              ...sheet,
+              expected: { ...sheet.expected, rows: withStep(sheet.expected.rows, finding) },
+              last: { ...sheet.last, rows: withStep(sheet.last.rows, finding) },
+            }
+          : undefined,
+      );
+      client.setQueryData(crewSheetQueries.order(findingId).queryKey, finding);
+    },
+  });
+}

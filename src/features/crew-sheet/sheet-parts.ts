@@ -1,0 +1,166 @@
+import type { I18n } from "@lingui/core";
+import type { Verdict } from "../../../shared/acoustics/types";
+import { formatDay } from "../../../shared/format/date";
+import type { Locale } from "../../../shared/i18n/index";
+import type { CrewSheetRow, CrewSheetView } from "../../../shared/schemas/crew";
+import type { DayFigures, FindingKind } from "../../../shared/schemas/finding";
+import { capital, numberWord } from "./number-words";
+
+export type PartName = "expected" | "last";
+
+export interface SheetPart {
+  /** Somebody has to do something about these. */
+  readonly flagged: readonly CrewSheetRow[];
+  /** Recorded or expected, and nothing to do. */
+  readonly quiet: readonly CrewSheetRow[];
+  /** No figure, and why. */
+  readonly open: readonly CrewSheetRow[];
+  readonly absent: readonly CrewSheetRow[];
+}
+
+/** Orders that are about what happened; the others are about the shift to come and stand on the sheet for it. */
+const ABOUT_THE_PAST: ReadonlySet<FindingKind> = new Set([
+  "not-worn-long-enough",
+  "wearing-unknown",
+  "peak-or-ceiling",
+]);
+
+/**
+ * What the sheet says of a recorded day: its verdict at the ear. Where the rule has no limit there, a protector that
+ * protects too little is what stands in for Over.
+ */
+export function sheetVerdict(figures: DayFigures, hasLimitAtEar: boolean): Verdict {
+  if (hasLimitAtEar) return figures.verdictAtEar;
+  if (figures.word === "too-little") return "over";
+  if (figures.hasProtector === "no") return figures.verdictOutside;
+  return figures.word === null ? "not-assessed" : "under";
+}
+
+export const isOpenOrder = ({ order }: CrewSheetRow): boolean =>
+  order !== null && order.state !== "done";
+
+export function splitExpected(rows: readonly CrewSheetRow[]): SheetPart {
+  const present = rows.filter(({ isAbsent }) => !isAbsent);
+  const rest = present.filter(({ order }) => order === null);
+  return {
+    flagged: present.filter(({ order }) => order !== null),
+    quiet: rest.filter(({ figures }) => figures !== null),
+    open: rest.filter(({ figures }) => figures === null),
+    absent: rows.filter(({ isAbsent }) => isAbsent),
+  };
+}
+
+export function splitLast(rows: readonly CrewSheetRow[], hasLimitAtEar: boolean): SheetPart {
+  const present = rows.filter(({ isAbsent }) => !isAbsent);
+  const verdictOf = ({ figures }: CrewSheetRow) =>
+    figures ? sheetVerdict(figures, hasLimitAtEar) : null;
+  const isFlagged = (row: CrewSheetRow) => {
+    const verdict = verdictOf(row);
+    return (
+      verdict === "over" ||
+      verdict === "cant-tell-yet" ||
+      (row.figures !== null && row.order !== null && ABOUT_THE_PAST.has(row.order.kind))
+    );
+  };
+  const rest = present.filter((row) => !isFlagged(row));
+  const rank = (row: CrewSheetRow) => ["over", "cant-tell-yet"].indexOf(verdictOf(row) ?? "");
+  const place = (row: CrewSheetRow) => (rank(row) === -1 ? 2 : rank(row));
+  return {
+    flagged: present.filter(isFlagged).sort((a, b) => place(a) - place(b)),
+    quiet: rest.filter((row) => verdictOf(row) === "under"),
+    open: rest.filter((row) => verdictOf(row) === "not-assessed" || verdictOf(row) === null),
+    absent: rows.filter(({ isAbsent }) => isAbsent),
+  };
+}
+
+/** Whether the order is dealt with on the sheet for today and only looked at here. */
+export function isForToday(row: CrewSheetRow, expected: readonly CrewSheetRow[]): boolean {
+  return (
+    row.order !== null &&
+    !ABOUT_THE_PAST.has(row.order.kind) &&
+    expected.some(({ worker, isAbsent }) => worker.id === row.worker.id && !isAbsent)
+  );
+}
+
+export function expectedTitle(i18n: I18n, part: SheetPart, hasStarted: boolean): string {
+  const count = part.flagged.filter(isOpenOrder).length;
+  const values = { count, number: capital(i18n, numberWord(i18n, count)) };
+  if (hasStarted)
+    return i18n.t(
+      "{count, plural, =0 {Nothing to do today} one {{number} order for today} other {{number} orders for today}}",
+      values,
+    );
+  return i18n.t(
+    "{count, plural, =0 {Nothing to do before they start} one {{number} order before they start} other {{number} orders before they start}}",
+    values,
+  );
+}
+
+/** "One was over, one we can’t tell yet". */
+export function lastTitle(i18n: I18n, rows: readonly CrewSheetRow[], hasLimitAtEar: boolean): string {
+  const verdicts = rows.flatMap(({ figures, isAbsent }) =>
+    figures && !isAbsent ? [sheetVerdict(figures, hasLimitAtEar)] : [],
+  );
+  const countOf = (verdict: Verdict) => verdicts.filter((one) => one === verdict).length;
+  const over = countOf("over");
+  const open = countOf("cant-tell-yet");
+  const values = {
+    over,
+    open,
+    overNumber: numberWord(i18n, over),
+    openNumber: numberWord(i18n, open),
+  };
+  if (verdicts.length === 0) return i18n.t("No shift recorded yet");
+  if (over === 0 && open === 0) return i18n.t("Nobody was over");
+  const text =
+    open === 0
+      ? hasLimitAtEar
+        ? i18n.t("{over, plural, one {{overNumber} was over} other {{overNumber} were over}}", values)
+        : i18n.t(
+            "{over, plural, one {{overNumber} was protected too little} other {{overNumber} were protected too little}}",
+            values,
+          )
+      : over === 0
+        ? i18n.t("{openNumber} we can’t tell yet", values)
+        : i18n.t(
+            "{over, plural, one {{overNumber} was over} other {{overNumber} were over}}, {openNumber} we can’t tell yet",
+            values,
+          );
+  return capital(i18n, text);
+}
+
+const absentWords = (i18n: I18n, count: number) =>
+  i18n.t("{number} absent", { number: numberWord(i18n, count) });
+
+/** "Tuesday 1 December, 06:00. Eleven in noise." */
+export function expectedLead(i18n: I18n, locale: Locale, sheet: CrewSheetView): string {
+  const { rows, date } = sheet.expected;
+  const present = rows.filter(({ isAbsent }) => !isAbsent);
+  const inNoise = present.filter(
+    ({ figures }) => figures && ["over", "cant-tell-yet"].includes(figures.verdictOutside),
+  ).length;
+  const absent = rows.length - present.length;
+  const who = [
+    i18n.t("{number} in noise", { number: numberWord(i18n, inNoise) }),
+    ...(absent > 0 ? [absentWords(i18n, absent)] : []),
+  ].join(", ");
+  return i18n.t("{day}, {start}. {who}.", {
+    day: formatDay(date, locale),
+    start: sheet.crew.usualStart,
+    who: capital(i18n, who),
+  });
+}
+
+/** "Monday 30 November. Ten recorded, one absent." */
+export function lastLead(i18n: I18n, locale: Locale, last: CrewSheetView["last"]): string {
+  if (last.date === null) return i18n.t("The last shift stands here once it is entered.");
+  const recorded = last.rows.filter(({ figures, isAbsent }) => figures && !isAbsent).length;
+  const absent = last.rows.filter(({ isAbsent }) => isAbsent).length;
+  const missing = last.rows.length - recorded - absent;
+  const who = [
+    i18n.t("{number} recorded", { number: numberWord(i18n, recorded) }),
+    ...(absent > 0 ? [absentWords(i18n, absent)] : []),
+    ...(missing > 0 ? [i18n.t("{number} not recorded", { number: numberWord(i18n, missing) })] : []),
+  ].join(", ");
+  return i18n.t("{day}. {who}.", { day: formatDay(last.date, locale), who: capital(i18n, who) });
+}

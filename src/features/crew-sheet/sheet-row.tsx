@@ -1,0 +1,207 @@
+import { useLingui } from "@lingui/react";
+import { asReason, reasonText } from "../../../shared/findings/reasons";
+import { noticedSentence, orderSentence, remedyFigure, remedyOf } from "../../../shared/findings/sentences";
+import { findingWord } from "../../../shared/findings/words";
+import { formatLimit } from "../../../shared/format/level";
+import type { CrewSheetRow } from "../../../shared/schemas/crew";
+import type { DayFigures } from "../../../shared/schemas/finding";
+import { outsideVerdict, type StripFrame, stripOfDay } from "../../components/day-figures";
+import { DropStrip } from "../../components/drop-strip";
+import { LevelFigure } from "../../components/level-figure";
+import { protectorWordText } from "../../components/protector-word";
+import { Verdict } from "../../components/verdict";
+import { useLocale } from "../../lib/i18n";
+import { OrderActions } from "./order-actions";
+import type { SheetOrder } from "./queries";
+import { type PartName, sheetVerdict } from "./sheet-parts";
+
+const STRIP_PX = 200;
+
+/** Figure, strip, figure: as the ticks stand, at the ear left and without protection right. */
+function Figures({
+  figures,
+  frame,
+  isExpected,
+  isFlagged,
+}: {
+  figures: DayFigures;
+  frame: StripFrame;
+  isExpected: boolean;
+  isFlagged: boolean;
+}) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const strip = stripOfDay(figures, frame);
+  return (
+    <div className="sheet-figures">
+      <LevelFigure
+        levelDb={figures.atEarDb}
+        uncertaintyDb={isFlagged ? strip.atEarUDb : null}
+        isStrong
+      />
+      <DropStrip
+        {...strip}
+        isExpected={isExpected}
+        variant="list"
+        widthPx={STRIP_PX}
+        k={isFlagged ? 1.5 : 1.15}
+        outsideWords={outsideVerdict(i18n, locale, figures).words.toLocaleLowerCase(locale)}
+      />
+      <LevelFigure
+        levelDb={figures.outsideDb}
+        bound={figures.outsideBound}
+        uncertaintyDb={isFlagged ? strip.outsideUDb : null}
+      />
+    </div>
+  );
+}
+
+/** What stands at the right of a name. */
+function RowWord({
+  row,
+  part,
+  frame,
+}: {
+  row: CrewSheetRow;
+  part: PartName;
+  frame: StripFrame | null;
+}) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const { figures, order } = row;
+  if (part === "last" && figures && frame) {
+    const verdict = sheetVerdict(figures, frame.hasLimitAtEar);
+    const [limit] = frame.limits;
+    if (verdict === "over" && frame.hasLimitAtEar && limit)
+      return (
+        <Verdict verdict="over">
+          {i18n.t("Over {value}", { value: formatLimit(limit.levelDb, locale) })}
+        </Verdict>
+      );
+    if (verdict === "over" && figures.word !== "too-little") return <Verdict verdict="over" />;
+    if (verdict === "over") return <b>{i18n.t("Protects too little")}</b>;
+    if (verdict === "cant-tell-yet" || verdict === "not-assessed")
+      return <Verdict verdict={verdict} />;
+  }
+  if (order && part === "expected") return <b>{findingWord(i18n, order.kind)}</b>;
+  if (!figures) return <Verdict verdict="not-assessed" />;
+  if (figures.word !== null) {
+    const isFault = figures.word === "too-little" || figures.word === "too-much";
+    const text = protectorWordText(i18n, figures.word);
+    return isFault ? <b>{text}</b> : <span>{text}</span>;
+  }
+  if (figures.hasProtector === "no")
+    return <span>{outsideVerdict(i18n, locale, figures).words}</span>;
+  return <Verdict verdict="not-assessed" />;
+}
+
+function Noticed({ order }: { order: SheetOrder }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const noticed = noticedSentence(i18n, locale, order.kind, order.facts);
+  const remedy = remedyOf(order.facts);
+  const figure = remedyFigure(locale, order.facts, (word) => protectorWordText(i18n, word));
+  return (
+    <>
+      {i18n.t("{sentence}.", { sentence: noticed })}
+      {remedy && figure && (
+        <>
+          {" "}
+          {i18n.t("{protector}: day {figure}.", { protector: remedy.names.join(" + "), figure })}
+        </>
+      )}
+    </>
+  );
+}
+
+/** A worker on the sheet; one who is flagged has one order beneath. */
+export function SheetRow({
+  row,
+  part,
+  frame,
+  crewId,
+  isFlagged,
+  isForToday = false,
+  onStale,
+}: {
+  row: CrewSheetRow;
+  part: PartName;
+  frame: StripFrame | null;
+  crewId: string;
+  isFlagged: boolean;
+  isForToday?: boolean;
+  onStale: () => void;
+}) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const { worker, figures, order } = row;
+  const reason = figures && sheetReason(figures);
+  return (
+    <li className={`sheet-row${isFlagged ? " is-flagged" : ""}`}>
+      <div className="sheet-name">
+        <h3>
+          {worker.name}
+          {row.isLoan && <span className="sheet-loan"> {i18n.t("on loan")}</span>}
+        </h3>
+        <RowWord row={row} part={part} frame={frame} />
+      </div>
+      {figures && frame && (
+        <Figures
+          figures={figures}
+          frame={frame}
+          isExpected={part === "expected"}
+          isFlagged={isFlagged}
+        />
+      )}
+      {!figures && (
+        <p className="sheet-noticed">
+          {part === "expected"
+            ? i18n.t("No nominal day is known, so nothing can be expected.")
+            : i18n.t("No shift was entered.")}
+        </p>
+      )}
+      {reason && <p className="sheet-noticed">{i18n.t("Because {reason}.", { reason })}</p>}
+      {isFlagged &&
+        order &&
+        (isForToday ? (
+          <>
+            <div className="sheet-order">
+              <div className="sheet-order-words">
+                {i18n.t("{order}: on the sheet for today.", {
+                  order: orderSentence(i18n, locale, order.kind, order.facts),
+                })}
+              </div>
+              <span className="sheet-state">
+                {order.state === "new" || order.state === "came-back"
+                  ? i18n.t("Not done yet")
+                  : order.state === "done"
+                    ? i18n.t("Done, to be checked")
+                    : i18n.t("In hand")}
+              </span>
+            </div>
+            <p className="sheet-noticed">
+              <Noticed order={order} />
+            </p>
+          </>
+        ) : (
+          <OrderActions crewId={crewId} order={order} workerName={worker.name} onStale={onStale}>
+            {[
+              i18n.t("{sentence}.", {
+                sentence: orderSentence(i18n, locale, order.kind, order.facts),
+              }),
+              <Noticed key="noticed" order={order} />,
+            ]}
+          </OrderActions>
+        ))}
+      {isFlagged && !order && (
+        <p className="sheet-noticed">{i18n.t("Nothing for you to do; the officer looks at it.")}</p>
+      )}
+    </li>
+  );
+
+  function sheetReason(of: DayFigures): string | null {
+    if (of.word !== null || of.hasProtector === "no") return null;
+    const known = asReason(of.reason);
+    return known ? reasonText(i18n, known) : null;
+  }
+}
