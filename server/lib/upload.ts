@@ -3,14 +3,9 @@ import type { Request, Response } from "express";
 import multer, { MulterError } from "multer";
 import { AppError, issue, unprocessable } from "./errors";
 
-  name: z.string().min(1).max(255),
-  sizeBytes: z.number(),
-  sha256: z.string(),
-});
-
 /**
- * Reads a form with one file into memory. The file's digest becomes part of the body, and so of what an
- * Idempotency-Key stands for.
+ * Reads a form with one file into memory: its bytes into `request.file`, what is to be said of it into the body. Its
+ * digest is so part of what an Idempotency-Key stands for.
  *
  * @throws AppError too-large
  */
@@ -20,9 +15,8 @@ export async function readUpload(
   limitBytes: number,
 ): Promise<void> {
   const limits = { fileSize: limitBytes, files: 1, fields: 10, fieldSize: 10_000, parts: 12 };
-  const read = multer({ storage: multer.memoryStorage(), limits, defParamCharset: "utf8" }).single(
-    "file",
-  );
+  const storage = multer.memoryStorage();
+  const read = multer({ storage, limits, defParamCharset: "utf8" }).single("file");
   try {
     await new Promise<void>((resolve, reject) =>
       read(request, response, (error?: unknown) => (error ? reject(error) : resolve())),
@@ -34,12 +28,9 @@ export async function readUpload(
   }
   const { file } = request;
   if (!file) throw unprocessable([issue(["file"], "file-missing")]);
+  const sha256 = createHash("sha256").update(file.buffer).digest("hex");
   request.body = {
     ...request.body,
-    file: {
-      name: file.originalname,
-      sizeBytes: file.size,
-      sha256: createHash("sha256").update(file.buffer).digest("hex"),
-    },
+    file: { name: file.originalname, sizeBytes: file.size, sha256 },
   };
 }

@@ -1,3 +1,7 @@
 import type { RouteObject } from "react-router-dom";
+import { paths } from "../paths";
 
-export const peopleRoutes: RouteObject[] = [];
+export const peopleRoutes: RouteObject[] = [
+  { path: paths.crewSheet, lazy: () => import("./crew-sheet-page") },
+  { path: paths.crewSheetOf(":crewId"), lazy: () => import("./crew-sheet-page") },
+];

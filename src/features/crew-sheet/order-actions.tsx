@@ -1,5 +1,5 @@
 import { useLingui } from "@lingui/react";
-import { type FormEvent, useId, useState } from "react";
+import { type FormEvent, type ReactNode, useId, useState } from "react";
 import { findingStateWord } from "../../../shared/findings/words";
 import { Button } from "../../components/button";
 import { TextButton } from "../../components/link";
@@ -14,7 +14,7 @@ const SHORTEST_REASON = 3;
 /** Sends steps on an order, asks where somebody was quicker, and says what went wrong in its place. */
 export function useSendStep(crewId: string, order: Pick<SheetOrder, "findingId" | "revision">) {
   const { i18n } = useLingui();
-  const { keyFor, settle } = useChangeKey();
+  const { keyFor, forget: forgetKey } = useChangeKey();
   const change = useOrderStep(crewId, order.findingId);
   const [asked, setAsked] = useState<OrderStep | null>(null);
   const current = asked ? currentFinding(change.error) : null;
@@ -25,7 +25,7 @@ export function useSendStep(crewId: string, order: Pick<SheetOrder, "findingId" 
       { step, revision, idempotencyKey: keyFor({ step, revision }) },
       {
         onSuccess: () => {
-          settle();
+          forgetKey();
           setAsked(null);
           onSent();
         },
@@ -52,15 +52,18 @@ export function OrderActions({
   order,
   workerName,
   onStale,
-  children,
+  words,
+  noticed,
 }: {
   crewId: string;
   order: SheetOrder;
   workerName: string;
   /** The sheet is out of date: it is to be read again. */
   onStale: () => void;
-  /** What was noticed: between the order with its button and the second way out. */
-  children: [order: React.ReactNode, noticed: React.ReactNode];
+  /** The order itself. */
+  words: ReactNode;
+  /** What was noticed, between the order with its button and the second way out. */
+  noticed: ReactNode;
 }) {
   const { i18n } = useLingui();
   const { send, forget, asked, current, isBusy, error } = useSendStep(crewId, order);
@@ -85,11 +88,10 @@ export function OrderActions({
     });
   }
 
-  const [orderText, noticed] = children;
   return (
     <>
       <div className="sheet-order">
-        <div className="sheet-order-words">{orderText}</div>
+        <div className="sheet-order-words">{words}</div>
         {order.canMarkDone ? (
           <Button
             kind="big"

@@ -114,6 +114,10 @@ function Noticed({ order }: { order: SheetOrder }) {
   );
 }
 
+/** Why a day has no word for its protector, where there is something to say. */
+const reasonOf = (figures: DayFigures) =>
+  figures.word !== null || figures.hasProtector === "no" ? null : asReason(figures.reason);
+
 /** A worker on the sheet; one who is flagged has one order beneath. */
 export function SheetRow({
   row,
@@ -135,7 +139,8 @@ export function SheetRow({
   const { i18n } = useLingui();
   const locale = useLocale();
   const { worker, figures, order } = row;
-  const reason = figures && sheetReason(figures);
+  const reason = figures && reasonOf(figures);
+  const reasonWords = reason && reasonText(i18n, reason);
   return (
     <li className={`sheet-row${isFlagged ? " is-flagged" : ""}`}>
       <div className="sheet-name">
@@ -160,7 +165,9 @@ export function SheetRow({
             : i18n.t("No shift was entered.")}
         </p>
       )}
-      {reason && <p className="sheet-noticed">{i18n.t("Because {reason}.", { reason })}</p>}
+      {reasonWords && (
+        <p className="sheet-noticed">{i18n.t("Because {reason}.", { reason: reasonWords })}</p>
+      )}
       {isFlagged &&
         order &&
         (isForToday ? (
@@ -184,24 +191,20 @@ export function SheetRow({
             </p>
           </>
         ) : (
-          <OrderActions crewId={crewId} order={order} workerName={worker.name} onStale={onStale}>
-            {[
-              i18n.t("{sentence}.", {
-                sentence: orderSentence(i18n, locale, order.kind, order.facts),
-              }),
-              <Noticed key="noticed" order={order} />,
-            ]}
-          </OrderActions>
+          <OrderActions
+            crewId={crewId}
+            order={order}
+            workerName={worker.name}
+            onStale={onStale}
+            words={i18n.t("{sentence}.", {
+              sentence: orderSentence(i18n, locale, order.kind, order.facts),
+            })}
+            noticed={<Noticed order={order} />}
+          />
         ))}
       {isFlagged && !order && (
         <p className="sheet-noticed">{i18n.t("Nothing for you to do; the officer looks at it.")}</p>
       )}
     </li>
   );
-
-  function sheetReason(of: DayFigures): string | null {
-    if (of.word !== null || of.hasProtector === "no") return null;
-    const known = asReason(of.reason);
-    return known ? reasonText(i18n, known) : null;
-  }
 }

@@ -1,0 +1,37 @@
+import type { GridRow } from "../../../shared/schemas/shift";
+import { isSettled, isSpoken, type RowDraft } from "./draft";
+import type { RowEvaluation } from "./evaluate-rows";
+
+/** Where a row stands between roster and server. */
+export type RowState =
+  | "saved"
+  | "ready"
+  | "not-confirmed"
+  | "does-not-add-up"
+  | "has-fault"
+  | "asks"
+  | "refused"
+  | "behind";
+
+export function rowState(found: RowEvaluation, gridRow: GridRow, isBehind: boolean): RowState {
+  const { row, problems, questions } = found;
+  if (isSettled(row, gridRow)) return "saved";
+  if (isBehind) return "behind";
+  if (problems.some(({ kind }) => kind === "refused")) return "refused";
+  if (problems.some(({ kind }) => kind === "does-not-add-up")) return "does-not-add-up";
+  if (problems.length > 0) return "has-fault";
+  if (!isSpoken(row, gridRow)) return "not-confirmed";
+  return questions.length > 0 ? "asks" : "ready";
+}
+
+/** Something stands in the row that a person has to look at. */
+export const hasProblem = (found: RowEvaluation): boolean =>
+  found.problems.length > 0 || found.questions.length > 0;
+
+/** Filled in from roster and nominal day, in order, and nobody has said anything about it yet. */
+export const isOnlyFilledIn = (
+  found: RowEvaluation,
+  row: RowDraft,
+  gridRow: GridRow,
+): boolean =>
+  !isSettled(row, gridRow) && !isSpoken(row, gridRow) && found.problems.length === 0;

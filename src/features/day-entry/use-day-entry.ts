@@ -1,0 +1,208 @@
+import { useMutation } from "@tanstack/react-query";
+import { useCallback, useEffect, useMemo, useRef, useState } from "react";
+import type { DayGridView, GridRow } from "../../../shared/schemas/shift";
+import { ApiError, newChangeKey } from "../../lib/api";
+import {
+  type DayDraft,
+  type DraftAction,
+  isBehind,
+  isSpoken,
+  openDay,
+  rebaseDraft,
+  reduceDraft,
+} from "./draft";
+import { type DraftStore, type PendingSave, restoreDraft } from "./draft-store";
+import { createRowEvaluator, type EvaluateRow, type RowEvaluation, usualSetup } from "./evaluate-rows";
+import { saveDay } from "./queries";
+import { type Collected, collectRows, countRows, draftAfter, viewAfter } from "./save";
+
+const KEEP_AFTER_MS = 250;
+const STEPS_BACK = 50;
+
+export interface SaveOutcome {
+  readonly saved: number;
+  readonly waiting: number;
+  /** Place of the first row that waits, if any. */
+  readonly firstWaiting: number | null;
+}
+
+export interface DayEntryState {
+  readonly view: DayGridView;
+  readonly draft: DayDraft;
+  readonly found: readonly RowEvaluation[];
+  readonly evaluate: EvaluateRow;
+  readonly dispatch: (action: DraftAction) => void;
+  /** Takes back the last change: a paste, a fill, a typed cell. */
+  readonly undo: () => void;
+  /** When the draft that was restored had been kept; null where none was. */
+  readonly restoredAt: string | null;
+  readonly dropDraft: () => void;
+  /** Workers whose shift somebody else has saved since this draft began. */
+  readonly behind: readonly string[];
+  readonly isSaving: boolean;
+  readonly saveError: unknown;
+  /** Resolves to "reason" where saved shifts change and nobody has said why. */
+  readonly save: (reason: string | null) => Promise<SaveOutcome | "reason" | "nothing" | "failed">;
+}
+
+/** The request's outcome is not known: it may have been stored, and has to go again under the same key. */
+const isOutcomeOpen = (error: unknown) =>
+  !(error instanceof ApiError) || error.status === 0 || error.status >= 500;
+
+/** What is typed for a crew's day: kept on this device at every change, evaluated row by row, saved in one request. */
+export function useDayEntry(
+  view: DayGridView,
+  store: DraftStore,
+  onView: (view: DayGridView) => void,
+): DayEntryState {
+  const [stored] = useState(() => store.read());
+  const [draft, setDraft] = useState(() => {
+    const opened = openDay(view);
+    return stored ? restoreDraft(opened, stored) : opened;
+  });
+  const [restoredAt, setRestoredAt] = useState(
+    stored && stored.rows.length > 0 ? stored.keptAt : null,
+  );
+  const past = useRef<DayDraft[]>([]);
+  const pending = useRef<PendingSave | null>(stored?.pending ?? null);
+  const latest = useRef({ draft, view });
+  latest.current = { draft, view };
+
+  const seenView = useRef(view);
+  useEffect(() => {
+    if (seenView.current === view) return;
+    seenView.current = view;
+    setDraft((known) => rebaseDraft(known, view));
+  }, [view]);
+
+  useEffect(() => {
+    const keep = () => store.write(draft, pending.current);
+    const timer = setTimeout(keep, KEEP_AFTER_MS);
+    window.addEventListener("pagehide", keep);
+    return () => {
+      clearTimeout(timer);
+      window.removeEventListener("pagehide", keep);
+    };
+  }, [draft, store]);
+  // Leaving for another page of the application is faster than the timer.
+  useEffect(() => () => store.write(latest.current.draft, pending.current), [store]);
+
+  const evaluate = useMemo(() => createRowEvaluator(view), [view]);
+  const found = useMemo(() => draft.rows.map(evaluate), [draft.rows, evaluate]);
+
+  const dispatch = useCallback((action: DraftAction) => {
+    setDraft((known) => {
+      const next = reduceDraft(known, withSetup(action, known, latest.current.view));
+      if (next !== known) past.current = [...past.current.slice(-STEPS_BACK), known];
+      return next;
+    });
+  }, []);
+  const undo = useCallback(() => {
+    const before = past.current.pop();
+    if (before) setDraft(before);
+  }, []);
+
+  const mutation = useMutation({
+    mutationFn: ({ collected, sent }: { collected: Collected; sent: PendingSave }) => {
+      const body = { date: latest.current.view.date, rows: collected.rows };
+      return saveDay(view.crew.id, body, sent.key);
+    },
+  });
+
+  async function save(reason: string | null) {
+    const collected = collectRows(draft, view, evaluate, reason);
+    if (collected.corrections.length > 0 && reason === null) return "reason" as const;
+    if (collected.rows.length === 0) {
+      if (collected.unchanged.length === 0) return "nothing" as const;
+      const empty = { saved: [], refused: [], conflicts: [], entryId: "", notices: noNotices };
+      setDraft(draftAfter(draft, view, empty, collected));
+      return outcome(0, draft, view);
+    }
+    const body = JSON.stringify(collected.rows);
+    // The same rows again are the same change, whatever became of the first request.
+    const sent: PendingSave =
+      pending.current?.body === body ? pending.current : { key: newChangeKey(), body };
+    pending.current = sent;
+    store.write(draft, sent);
+    try {
+      const reply = await mutation.mutateAsync({ collected, sent });
+      pending.current = null;
+      past.current = [];
+      const after = viewAfter(latest.current.view, reply, collected.rows);
+      const next = draftAfter(latest.current.draft, after, reply, collected);
+      seenView.current = after;
+      setDraft(next);
+      setRestoredAt(null);
+      store.write(next, null);
+      onView(after);
+      const savedWorkers = new Set(reply.saved.map(({ workerId }) => workerId));
+      return outcome(savedWorkers.size, next, after);
+    } catch (error) {
+      if (!isOutcomeOpen(error)) pending.current = null;
+      store.write(latest.current.draft, pending.current);
+      return "failed" as const;
+    }
+  }
+
+  const gridRows = useMemo(() => new Map(view.rows.map((row) => [row.worker.id, row])), [view]);
+  const behind = draft.rows
+    .filter((row) => {
+      const gridRow = gridRows.get(row.workerId);
+      return gridRow !== undefined && isBehind(row, gridRow);
+    })
+    .map(({ workerId }) => workerId);
+
+  return {
+    view,
+    draft,
+    found,
+    evaluate,
+    dispatch,
+    undo,
+    restoredAt,
+    dropDraft() {
+      pending.current = null;
+      setRestoredAt(null);
+      setDraft(openDay(view));
+    },
+    behind,
+    isSaving: mutation.isPending,
+    saveError: mutation.error,
+    save,
+  };
+}
+
+const noNotices = { entryId: "", notBefore: null, state: "none", people: 0, notices: [] } as const;
+
+/** A reading typed into a cell is taken under the settings of the last one, until somebody says otherwise. */
+function withSetup(action: DraftAction, draft: DayDraft, view: DayGridView): DraftAction {
+  if (action.type !== "set-cells" || !action.changes.some(({ cell }) => cell === "reading")) {
+    return action;
+  }
+  const setup = usualSetup(view, draft.rows);
+  const rows = draft.rows.map((row) =>
+    row.readingSetup === null &&
+    action.changes.some(({ cell, workerId }) => cell === "reading" && workerId === row.workerId)
+      ? { ...row, readingSetup: setup }
+      : row,
+  );
+  return { type: "replace", draft: reduceDraft({ ...draft, rows }, action) };
+}
+
+function outcome(saved: number, draft: DayDraft, view: DayGridView): SaveOutcome {
+  const gridRows = new Map<string, GridRow>(view.rows.map((row) => [row.worker.id, row]));
+  const isWaiting = (workerId: string, at: number) => {
+    const row = draft.rows[at];
+    const gridRow = gridRows.get(workerId);
+    return row !== undefined && gridRow !== undefined && stateOf(row, gridRow) !== "saved";
+  };
+  const first = draft.rows.findIndex(({ workerId }, at) => isWaiting(workerId, at));
+  return {
+    saved,
+    waiting: countRows(draft, view).waiting,
+    firstWaiting: first === -1 ? null : first,
+  };
+}
+
+const stateOf = (row: DayDraft["rows"][number], gridRow: GridRow) =>
+  isSpoken(row, gridRow) || (gridRow.saved === null && !gridRow.isAbsent) ? "waits" : "saved";

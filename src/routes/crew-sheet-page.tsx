@@ -1,0 +1,224 @@
+import { useLingui } from "@lingui/react";
+import { useQuery } from "@tanstack/react-query";
+import { type ReactNode, useMemo } from "react";
+import { Link, useNavigate, useParams, useSearchParams } from "react-router-dom";
+import { formatTime, localDateOf } from "../../shared/format/date";
+import { ruleSetVersion } from "../../shared/rule-sets";
+import { stripFrame } from "../components/day-figures";
+import { Empty } from "../components/empty";
+import { Failed } from "../components/failed";
+import { Folio, PageBody } from "../components/page";
+import { AskOfficer } from "../features/crew-sheet/ask-officer";
+import { crewSheetQueries } from "../features/crew-sheet/queries";
+import { SheetFrame, SheetLoading, SheetRows } from "../features/crew-sheet/sheet-part";
+import {
+  expectedLead,
+  expectedTitle,
+  isForToday,
+  lastLead,
+  lastTitle,
+  splitExpected,
+  splitLast,
+} from "../features/crew-sheet/sheet-parts";
+import { useUser } from "../features/session/session";
+import { useLocale } from "../lib/i18n";
+import { paths } from "../paths";
+import "../styles/crew-sheet.css";
+
+const PARTS = ["expected", "last", "ask"] as const;
+type Part = (typeof PARTS)[number];
+const isPart = (value: string | null): value is Part => PARTS.some((part) => part === value);
+
+/** The supervisor's sheet: who is expected in noise today, who was over, and one order for each who needs one. */
+export function Component() {
+  const { i18n } = useLingui();
+  const user = useUser();
+  const { crewId } = useParams();
+  const crews = useQuery({ ...crewSheetQueries.crews, enabled: crewId === undefined });
+  const own = crews.data?.find(({ supervisorNames }) => supervisorNames.includes(user.name));
+  const id = crewId ?? own?.id ?? crews.data?.[0]?.id;
+  if (id !== undefined) return <CrewSheet crewId={id} />;
+  return (
+    <PageBody>
+      <h1 className="sheet-crew">{i18n.t("Crew sheet")}</h1>
+      {crews.isPending && <SheetLoading />}
+      {crews.isError && <Failed error={crews.error} onRetry={() => void crews.refetch()} />}
+      {crews.isSuccess && (
+        <Empty title={i18n.t("You have no crew today.")}>
+          {i18n.t("Your safety officer puts you in charge of one.")}
+        </Empty>
+      )}
+    </PageBody>
+  );
+}
+
+function CrewSheet({ crewId }: { crewId: string }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const [search] = useSearchParams();
+  const asked = search.get("show");
+  const shows: Part = isPart(asked) ? asked : "expected";
+  const sheet = useQuery(crewSheetQueries.sheet(crewId));
+  const { data } = sheet;
+  const frame = useMemo(
+    () => (data ? stripFrame(i18n, locale, data.governingRuleSet, data.ruleSetVersion) : null),
+    [data, i18n, locale],
+  );
+  const ruleSet = data ? ruleSetVersion(data.governingRuleSet, data.ruleSetVersion) : null;
+  const refresh = () => void sheet.refetch();
+
+  let expected: ReactNode = <LoadingPart name="expected" />;
+  let last: ReactNode = <LoadingPart name="last" />;
+  let ask: ReactNode = null;
+  if (data && frame) {
+    const now = new Date().toISOString();
+    const { timeZone, usualStart } = data.crew;
+    const hasStarted =
+      localDateOf(now, timeZone) === data.expected.date && formatTime(now, timeZone) >= usualStart;
+    const today = splitExpected(data.expected.rows);
+    const common = { crewId, frame, onStale: refresh };
+    expected = (
+      <SheetFrame
+        name="expected"
+        title={expectedTitle(i18n, today, hasStarted)}
+        lead={expectedLead(i18n, locale, data)}
+        frame={frame}
+      >
+        {data.expected.rows.length === 0 ? (
+          <Empty title={i18n.t("Nobody belongs to this crew today.")} />
+        ) : (
+          <SheetRows {...common} part="expected" rows={today} isForToday={() => false} />
+        )}
+      </SheetFrame>
+    );
+    last = (
+      <SheetFrame
+        name="last"
+        title={lastTitle(i18n, data.last.rows, frame.hasLimitAtEar)}
+        lead={lastLead(i18n, locale, data.last)}
+        frame={frame}
+      >
+        <SheetRows
+          {...common}
+          part="last"
+          rows={splitLast(data.last.date === null ? [] : data.last.rows, frame.hasLimitAtEar)}
+          isForToday={(row) => isForToday(row, data.expected.rows)}
+        />
+      </SheetFrame>
+    );
+    ask = (
+      <AskOfficer
+        crewId={crewId}
+        timeZone={timeZone}
+        rows={[...data.expected.rows, ...data.last.rows]}
+        onStale={refresh}
+      />
+    );
+  }
+
+  return (
+    <>
+      <PageBody>
+        <div className="crew-sheet" data-shows={shows}>
+          <CrewChoice crewId={crewId} crew={data?.crew} crews={data?.crews ?? []} />
+          <FootWords crewId={crewId} shows={shows} />
+          {sheet.isError && <Failed error={sheet.error} onRetry={refresh} />}
+          {!sheet.isError && (
+            <div className="sheet-columns">
+              {expected}
+              <div className="sheet-second">
+                {last}
+                {ask}
+              </div>
+            </div>
+          )}
+        </div>
+      </PageBody>
+      <Folio>
+        {ruleSet &&
+          i18n.t("{title}, version {version}", {
+            title: i18n._(ruleSet.title),
+            version: ruleSet.version,
+          })}
+      </Folio>
+    </>
+  );
+}
+
+function LoadingPart({ name }: { name: "expected" | "last" }) {
+  const { i18n } = useLingui();
+  return (
+    <SheetFrame
+      name={name}
+      title={name === "expected" ? i18n.t("Expected today") : i18n.t("Last shift")}
+      lead={<span className="loading-line" />}
+      frame={null}
+    >
+      <SheetLoading />
+    </SheetFrame>
+  );
+}
+
+/** Whose sheet this is; with several crews it is chosen here. */
+function CrewChoice({
+  crewId,
+  crew,
+  crews,
+}: {
+  crewId: string;
+  crew: { name: string; timeZone: string } | undefined;
+  crews: readonly { id: string; name: string }[];
+}) {
+  const { i18n } = useLingui();
+  const navigate = useNavigate();
+  const isChoice = crews.length > 1;
+  return (
+    <div className="sheet-head">
+      <h1 className="sheet-crew">
+        {crew && !isChoice ? i18n.t("Crew sheet, {crew}", { crew: crew.name }) : i18n.t("Crew sheet")}
+        {crew && isChoice && <span className="sr-only">, {crew.name}</span>}
+      </h1>
+      {isChoice && (
+        <select
+          className="input"
+          aria-label={i18n.t("Crew")}
+          value={crewId}
+          onChange={(event) => navigate(paths.crewSheetOf(event.target.value))}
+        >
+          {crews.map(({ id, name }) => (
+            <option key={id} value={id}>
+              {name}
+            </option>
+          ))}
+        </select>
+      )}
+    </div>
+  );
+}
+
+/** On a phone one part is shown at a time; its words stand at the foot. */
+function FootWords({ crewId, shows }: { crewId: string; shows: Part }) {
+  const { i18n } = useLingui();
+  const words: Record<Part, string> = {
+    expected: i18n.t("Expected today"),
+    last: i18n.t("Last shift"),
+    ask: i18n.t("Ask the officer"),
+  };
+  return (
+    <nav className="foot-words" aria-label={i18n.t("Parts of the sheet")}>
+      <ul>
+        {PARTS.map((part) => (
+          <li key={part}>
+            <Link
+              to={{ pathname: paths.crewSheetOf(crewId), search: `?show=${part}` }}
+              replace
+              aria-current={part === shows ? "page" : undefined}
+            >
+              {words[part]}
+            </Link>
+          </li>
+        ))}
+      </ul>
+    </nav>
+  );
+}

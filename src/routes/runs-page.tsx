@@ -1,0 +1,3 @@
+export function Component() {
+  return null;
+}
