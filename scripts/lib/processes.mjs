@@ -1,5 +1,5 @@
 import { spawn } from "node:child_process";
-import { readFileSync } from "node:fs";
+import { existsSync, readdirSync, readFileSync } from "node:fs";
 import { setTimeout as sleep } from "node:timers/promises";
 
 export function isAlive(pid) {
@@ -103,11 +103,16 @@ function signalGroup(pid, signal) {
   }
 }
 
-function isGroupAlive(pid) {
+function isGroupAlive(group) {
   try {
-    process.kill(-pid, 0);
-    return true;
+    process.kill(-group, 0);
   } catch (error) {
     return error.code === "EPERM";
   }
+  // A zombie that nobody collects still counts for kill(), and would be waited for in vain.
+  if (!existsSync("/proc/self/stat")) return true;
+  return readdirSync("/proc")
+    .filter((name) => /^\d+$/.test(name))
+    .map((name) => processStat(name))
+    .some((stat) => stat !== null && stat[0] !== "Z" && Number(stat[2]) === group);
 }

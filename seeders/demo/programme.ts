@@ -1,7 +1,6 @@
 import type { LevelMetric, MeterSettings, OctaveBandValues } from "../../shared/acoustics/types";
 import type { z } from "zod";
 import type { SiteInput, SiteSettingsInput } from "../../shared/schemas/site";
-import type { InstrumentInput } from "../../shared/schemas/run";
 
 /** An engine works with two sites, invented throughout. Levels are dB(A) unless a name says otherwise. */
 export const ORGANIZATION = "Ostmere Engines";
@@ -131,7 +130,15 @@ export const CREWS: readonly DemoCrew[] = [
   { site: "kettle-bend", name: "Compressor and stores", usualStart: "08:00", usualLengthMin: 480, pattern: "weekdays", enteredAt: "16:25" },
 ];
 
-export type DemoInstrument = Omit<z.input<typeof InstrumentInput>, "siteId" | "calibrationDueOn"> & { site: SiteKey; calibrationDueInDays: number };
+export interface DemoInstrument {
+  site: SiteKey;
+  kind: "dosimeter" | "sound-level-meter" | "calibrator";
+  class: "1" | "2";
+  name: string;
+  serialNumber: string;
+  presets: readonly MeterSettings[];
+  calibrationDueInDays: number;
+}
 
 export const INSTRUMENTS: readonly DemoInstrument[] = [
   { site: "ostmere", kind: "dosimeter", class: "2", name: "Dosimeter, green band", serialNumber: "OD 40117", presets: [ENERGY_MEAN], calibrationDueInDays: 210 },

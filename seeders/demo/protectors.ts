@@ -1,13 +1,15 @@
-import type { ActivePart, ProtectorKind } from "../../shared/acoustics/types";
-import type { ProtectorFacts } from "../../shared/schemas/evaluation";
+import type { z } from "zod";
+import type { ProtectorKind } from "../../shared/acoustics/types";
+import type { Active, ProtectorFacts } from "../../shared/schemas/evaluation";
 
 export interface DemoProtector {
   name: string;
   kind: ProtectorKind;
-  data: ProtectorFacts;
+  data: z.input<typeof ProtectorFacts>;
 }
 
 type Bands = [number, number, number, number, number, number, number, number];
+type ActivePart = z.input<typeof Active>;
 interface Labels {
   usRatingDb: number | null;
   snrDb: number | null;
@@ -50,7 +52,7 @@ export const PROTECTORS: readonly DemoProtector[] = [
 ];
 
 /** Marsh cap on four sets whose cushions had gone hard: measured on the wearers, about twelve decibels less. */
-export const WORN_MARSH_CAP: ProtectorFacts = {
+export const WORN_MARSH_CAP: DemoProtector["data"] = {
   usRatingDb: 11, snrDb: 14, hDb: 17, mDb: 12, lDb: 5, slc80Db: null,
   bands: { meanDb: [4, 3, 6, 13, 18, 20, 22, 21], sdDb: [3.6, 3.0, 3.0, 3.2, 3.4, 3.6, 3.8, 4.2] }, active: null,
 };

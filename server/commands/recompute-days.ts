@@ -123,46 +123,77 @@ export function hashOf(refs: DayRefs, methodVersion: number = METHOD_VERSION): s
   return createHash("sha256").update(canonicalJson({ refs, methodVersion })).digest("hex");
 }
 
+/** What a stored result says of an evaluated day, but for whose it is and what it rests on. */
+export function resultFacts(
+  input: DayInput,
+  evaluation: DayEvaluation,
+  governing: RuleSetVersion,
+) {
+  const { governingCriteria: _, ...summary } = summarizeDay(input, evaluation, governing);
+  const isOwn = ({ ruleSetKey }: CriterionResult) => ruleSetKey === governing.key;
+  return {
+    ...summary,
+    methodVersion: evaluation.methodVersion,
+    shiftMin: evaluation.shiftMin,
+    unaccountedMin: evaluation.unaccountedMin,
+    grade: evaluation.grade,
+    isProjected: evaluation.isProjected,
+    isKept: evaluation.keptReasons.length > 0,
+    criteria: {
+      governing: evaluation.criteria.filter(isOwn),
+      comparison: evaluation.criteria.filter((result) => !isOwn(result)),
+    },
+  };
+}
+
+/** Columns of a stored result and the members of `resultFacts` that fill them, with their types. */
+export const RESULT_COLUMNS = {
+  governing_rule_set: ["ruleSetKey", "text"],
+  governing_version: ["ruleSetVersion", "int"],
+  method_version: ["methodVersion", "int"],
+  shift_min: ["shiftMin", "float8"],
+  unaccounted_min: ["unaccountedMin", "float8"],
+  grade: ["grade", "text"],
+  is_projected: ["isProjected", "boolean"],
+  is_kept: ["isKept", "boolean"],
+  outside_db: ["outsideDb", "float8"],
+  outside_bound: ["outsideBound", "text"],
+  at_ear_db: ["atEarDb", "float8"],
+  at_ear_active_db: ["atEarActiveDb", "float8"],
+  at_ear_as_worked_db: ["atEarAsWorkedDb", "float8"],
+  uncertainty_db: ["uncertaintyDb", "float8"],
+  dose_pct: ["dosePct", "float8"],
+  while_worn_db: ["whileWornDb", "float8"],
+  verdict_outside: ["verdictOutside", "text"],
+  verdict_at_ear: ["verdictAtEar", "text"],
+  word: ["word", "text"],
+  deciding_task_id: ["decidingTaskId", "uuid"],
+  has_protector: ["hasProtector", "text"],
+  reason: ["reason", "text"],
+  criteria: ["criteria", "jsonb"],
+} as const satisfies Record<string, readonly [keyof ReturnType<typeof resultFacts>, string]>;
+
+const resultColumns = Object.keys(RESULT_COLUMNS).join(", ");
+const resultMembers = Object.values(RESULT_COLUMNS);
+
 async function storeResults(
   organizationId: string,
   computed: readonly ComputedDay[],
 ): Promise<Map<string, string>> {
   if (computed.length === 0) return new Map();
-  const records = computed.map(({ day, input, evaluation, governing, hash }) => {
-    const { governingCriteria: _, ...summary } = summarizeDay(input, evaluation, governing);
-    const isOwn = ({ ruleSetKey }: CriterionResult) => ruleSetKey === governing.key;
-    return {
-      ...summary,
-      workerId: day.workerId,
-      siteId: day.siteId,
-      hash,
-      methodVersion: evaluation.methodVersion,
-      shiftMin: evaluation.shiftMin,
-      unaccountedMin: evaluation.unaccountedMin,
-      grade: evaluation.grade,
-      isProjected: evaluation.isProjected,
-      isKept: evaluation.keptReasons.length > 0,
-      criteria: {
-        governing: evaluation.criteria.filter(isOwn),
-        comparison: evaluation.criteria.filter((result) => !isOwn(result)),
-      },
-      refs: day.refs,
-    };
-  });
+  const records = computed.map(({ day, input, evaluation, governing, hash }) => ({
+    ...resultFacts(input, evaluation, governing),
+    workerId: day.workerId,
+    siteId: day.siteId,
+    hash,
+    refs: day.refs,
+  }));
   const json = JSON.stringify(records);
   await execute(
-    `INSERT INTO day_results (organization_id, site_id, worker_id, date, origin, governing_rule_set, governing_version, method_version, inputs_hash,
-       shift_min, unaccounted_min, grade, is_projected, is_kept, outside_db, outside_bound, at_ear_db, at_ear_active_db, at_ear_as_worked_db,
-       uncertainty_db, dose_pct, while_worn_db, verdict_outside, verdict_at_ear, word, deciding_task_id, has_protector, reason, criteria, refs)
-     SELECT $1, x."siteId", x."workerId", x.date, 'computed', x."ruleSetKey", x."ruleSetVersion", x."methodVersion", decode(x.hash, 'hex'),
-       x."shiftMin", x."unaccountedMin", x.grade, x."isProjected", x."isKept", x."outsideDb", x."outsideBound", x."atEarDb", x."atEarActiveDb",
-       x."atEarAsWorkedDb", x."uncertaintyDb", x."dosePct", x."whileWornDb", x."verdictOutside", x."verdictAtEar", x.word, x."decidingTaskId",
-       x."hasProtector", x.reason, x.criteria, x.refs
-     FROM jsonb_to_recordset($2::jsonb) AS x("siteId" uuid, "workerId" uuid, date date, hash text, "ruleSetKey" text, "ruleSetVersion" int,
-       "methodVersion" int, "shiftMin" float8, "unaccountedMin" float8, grade text, "isProjected" boolean, "isKept" boolean, "outsideDb" float8,
-       "outsideBound" text, "atEarDb" float8, "atEarActiveDb" float8, "atEarAsWorkedDb" float8, "uncertaintyDb" float8, "dosePct" float8,
-       "whileWornDb" float8, "verdictOutside" text, "verdictAtEar" text, word text, "decidingTaskId" uuid, "hasProtector" text, reason text,
-       criteria jsonb, refs jsonb)
+    `INSERT INTO day_results (organization_id, site_id, worker_id, date, origin, inputs_hash, refs, ${resultColumns})
+     SELECT $1, x."siteId", x."workerId", x.date, 'computed', decode(x.hash, 'hex'), x.refs, ${resultMembers.map(([name]) => `x."${name}"`).join(", ")}
+     FROM jsonb_to_recordset($2::jsonb) AS x("siteId" uuid, "workerId" uuid, date date, hash text, refs jsonb,
+       ${resultMembers.map(([name, type]) => `"${name}" ${type}`).join(", ")})
      ON CONFLICT (worker_id, date, inputs_hash) DO NOTHING`,
     [organizationId, json],
   );

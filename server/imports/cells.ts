@@ -12,9 +12,14 @@ export class Cells {
   readonly issues: ImportIssue[] = [];
   private readonly hasDecimalCommas: boolean;
 
-  constructor(private readonly file: Pick<CsvFile, "delimiter" | "lines">, columns: readonly ImportColumn[]) {
+  constructor(
+    private readonly file: Pick<CsvFile, "delimiter" | "lines">,
+    columns: readonly ImportColumn[],
+  ) {
     const numeric = columns.filter(({ kind }) => kind === "number").map(({ name }) => name);
-    this.hasDecimalCommas = file.lines.some(({ cells }) => numeric.some((name) => /^-?\d+,\d+$/.test(cells.get(name) ?? "")));
+    this.hasDecimalCommas = file.lines.some(({ cells }) =>
+      numeric.some((name) => /^-?\d+,\d+$/.test(cells.get(name) ?? "")),
+    );
   }
 
   refuse({ line }: CsvLine, field: string, code: string, params: ImportIssue["params"] = {}): null {
@@ -36,11 +41,15 @@ export class Cells {
     if (isFormula(text)) return this.refuse(at, field, "formula-in-number");
     if (/^-?\d+$/.test(text)) return Number(text);
     if (/^-?\d+\.\d+$/.test(text)) {
-      return this.hasDecimalCommas && /^-?\d{1,3}\.\d{3}$/.test(text) ? this.refuse(at, field, "number-ambiguous", { text }) : Number(text);
+      return this.hasDecimalCommas && /^-?\d{1,3}\.\d{3}$/.test(text)
+        ? this.refuse(at, field, "number-ambiguous", { text })
+        : Number(text);
     }
     if (/^-?\d+,\d+$/.test(text)) {
       const isAmbiguous = this.file.delimiter === "," || /^-?\d{1,3},\d{3}$/.test(text);
-      return isAmbiguous ? this.refuse(at, field, "number-ambiguous", { text }) : Number(text.replace(",", "."));
+      return isAmbiguous
+        ? this.refuse(at, field, "number-ambiguous", { text })
+        : Number(text.replace(",", "."));
     }
     return this.refuse(at, field, "not-a-number", { text: text.slice(0, 40) });
   }
@@ -52,7 +61,10 @@ export class Cells {
   date(at: CsvLine, field: string): string | null {
     const text = this.needed(at, field);
     if (text === null) return null;
-    const isDate = /^\d{4}-\d{2}-\d{2}$/.test(text) && !Number.isNaN(Date.parse(text)) && new Date(text).toISOString().startsWith(text);
+    const isDate =
+      /^\d{4}-\d{2}-\d{2}$/.test(text) &&
+      !Number.isNaN(Date.parse(text)) &&
+      new Date(text).toISOString().startsWith(text);
     return isDate ? text : this.refuse(at, field, "not-a-date", { text: text.slice(0, 40) });
   }
 
@@ -60,12 +72,21 @@ export class Cells {
     const text = this.text(at, field);
     if (text === null) return null;
     const found = /^(\d{1,2}):([0-5]\d)(?::00)?$/.exec(text);
-    return found && Number(found[1]) < 24 ? `${found[1]!.padStart(2, "0")}:${found[2]}` : this.refuse(at, field, "not-a-time", { text: text.slice(0, 40) });
+    return found && Number(found[1]) < 24
+      ? `${found[1]!.padStart(2, "0")}:${found[2]}`
+      : this.refuse(at, field, "not-a-time", { text: text.slice(0, 40) });
   }
 
-  choice<Choice extends string>(at: CsvLine, field: string, choices: readonly Choice[]): Choice | null {
+  choice<Choice extends string>(
+    at: CsvLine,
+    field: string,
+    choices: readonly Choice[],
+  ): Choice | null {
     const text = this.text(at, field);
     if (text === null) return null;
-    return choices.find((choice) => choice.toLowerCase() === text.toLowerCase()) ?? this.refuse(at, field, "not-a-choice", { choices: choices.join(", ") });
+    return (
+      choices.find((choice) => choice.toLowerCase() === text.toLowerCase()) ??
+      this.refuse(at, field, "not-a-choice", { choices: choices.join(", ") })
+    );
   }
 }

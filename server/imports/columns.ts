@@ -9,13 +9,26 @@ export interface ImportColumn {
   example: string;
 }
 
-const column = (name: string, kind: ImportColumn["kind"], example: string, meaning: string): ImportColumn =>
-  ({ name, kind, example, meaning, isRequired: true });
-const optional = (name: string, kind: ImportColumn["kind"], example: string, meaning: string): ImportColumn =>
-  ({ name, kind, example, meaning, isRequired: false });
+const column = (
+  name: string,
+  kind: ImportColumn["kind"],
+  example: string,
+  meaning: string,
+): ImportColumn => ({ name, kind, example, meaning, isRequired: true });
+const optional = (
+  name: string,
+  kind: ImportColumn["kind"],
+  example: string,
+  meaning: string,
+): ImportColumn => ({ name, kind, example, meaning, isRequired: false });
 
 const worker = column("employee_number", "text", "1041", "Employee number of the worker");
-const date = column("date", "date", "2026-03-02", "Local date on which the shift starts, YYYY-MM-DD");
+const date = column(
+  "date",
+  "date",
+  "2026-03-02",
+  "Local date on which the shift starts, YYYY-MM-DD",
+);
 
 /** The columns of each kind of file, in the order of its template. */
 export const IMPORT_COLUMNS: Readonly<Record<ImportKind, readonly ImportColumn[]>> = {
@@ -24,13 +37,33 @@ export const IMPORT_COLUMNS: Readonly<Record<ImportKind, readonly ImportColumn[]
     date,
     column("start", "time", "06:00", "Local start, HH:MM"),
     column("length_min", "number", "480", "Length of the shift, whole minutes"),
-    column("task", "text", "Grinding", "Name of a task of the site; one line per task; empty: a shift of which no task is known"),
+    column(
+      "task",
+      "text",
+      "Grinding",
+      "Name of a task of the site; one line per task; empty: a shift of which no task is known",
+    ),
     column("minutes", "number", "200", "Minutes in the task"),
-    optional("worn_pct", "number", "90", "Share of the task for which the protector was worn, %; empty: not known"),
-    optional("crew", "text", "Early fettlers", "Crew with which it was worked; empty: the worker's crew of that date"),
+    optional(
+      "worn_pct",
+      "number",
+      "90",
+      "Share of the task for which the protector was worn, %; empty: not known",
+    ),
+    optional(
+      "crew",
+      "text",
+      "Early fettlers",
+      "Crew with which it was worked; empty: the worker's crew of that date",
+    ),
     optional("which_hour", "choice", "", "first or second, where the clock showed the start twice"),
     optional("whole_day", "choice", "", "yes, to confirm a shift of exactly 24 hours"),
-    optional("unaccounted", "choice", "unknown", "How the time in no task was: unknown, like-the-rest or quiet"),
+    optional(
+      "unaccounted",
+      "choice",
+      "unknown",
+      "How the time in no task was: unknown, like-the-rest or quiet",
+    ),
     optional("unaccounted_level_db", "number", "", "Level of that time where it was quiet, dB"),
     optional("note", "text", "", "Note on the shift"),
   ],
@@ -39,11 +72,26 @@ export const IMPORT_COLUMNS: Readonly<Record<ImportKind, readonly ImportColumn[]
     date,
     column("instrument_serial", "text", "40817", "Serial number of the instrument"),
     column("duration_min", "number", "455", "Run time of the instrument, minutes"),
-    column("covers", "choice", "shift", "shift, projected or part: what the run says about the day"),
-    optional("start", "time", "06:00", "Start of the shift it belongs to, where the day has several"),
+    column(
+      "covers",
+      "choice",
+      "shift",
+      "shift, projected or part: what the run says about the day",
+    ),
+    optional(
+      "start",
+      "time",
+      "06:00",
+      "Start of the shift it belongs to, where the day has several",
+    ),
     optional("check_before_db", "number", "114.0", "Field check before, dB"),
     optional("check_after_db", "number", "113.9", "Field check after, dB"),
-    optional("kept_reason", "text", "", "Why a run is kept whose field checks drifted by more than 0.5 dB"),
+    optional(
+      "kept_reason",
+      "text",
+      "",
+      "Why a run is kept whose field checks drifted by more than 0.5 dB",
+    ),
     optional("unusual", "text", "", "What was unusual about the run"),
     column("criterion_level_db", "number", "85", "Settings: criterion level, dB"),
     column("exchange_rate_db", "number", "3", "Settings: exchange rate, 3, 4 or 5 dB"),
@@ -60,10 +108,20 @@ export const IMPORT_COLUMNS: Readonly<Record<ImportKind, readonly ImportColumn[]
   "past-results": [
     worker,
     date,
-    optional("level_db", "number", "91.4", "Daily level without protection, dB: LEX,8h, or TWA where the rule set judges a dose"),
+    optional(
+      "level_db",
+      "number",
+      "91.4",
+      "Daily level without protection, dB: LEX,8h, or TWA where the rule set judges a dose",
+    ),
     optional("at_ear_db", "number", "78.2", "Daily level at the ear, dB"),
     column("rule_set", "text", "eu-2003-10-ec", "Key of the rule set by which the day was judged"),
     column("length_min", "number", "480", "Length of the day's shifts, minutes"),
-    column("grade", "choice", "task-level", "measured-worker, measured-group, task-level or estimate"),
+    column(
+      "grade",
+      "choice",
+      "task-level",
+      "measured-worker, measured-group, task-level or estimate",
+    ),
   ],
 };

@@ -3,13 +3,20 @@ import type { ProblemIssue } from "../../shared/schemas/problem";
 import { checkShiftFacts, ShiftFacts } from "../../shared/schemas/shift";
 import { addDays, localDate } from "../../shared/time/zone";
 import {
-  employmentIssues, futureIssues, isSameShift, lockWorkers, overlapIssues, startOf, unknownTaskIssues, wholeDayIssues,
+  employmentIssues,
+  futureIssues,
+  isSameShift,
+  lockWorkers,
+  overlapIssues,
+  startOf,
+  unknownTaskIssues,
+  wholeDayIssues,
 } from "../commands/check-shift";
 import { type CheckedShift, storeShifts } from "../commands/store-shifts";
 import { groupBy } from "../lib/group-by";
 import type { Actor } from "../lib/policy";
 import type { Site } from "../models/site";
-import { crewOn, idsByName, type ImportWorker, workersByNumber } from "../queries/import-lookups";
+import { crewOn, type ImportWorker, idsByName, workersByNumber } from "../queries/import-lookups";
 import { type SavedShiftRow, savedShifts } from "../queries/saved-shifts";
 import { Cells } from "./cells";
 import { IMPORT_COLUMNS } from "./columns";
@@ -21,9 +28,20 @@ const BATCH = 1000;
 
 /** Column of a field, for what the checks of a shift have to say. */
 function columnOf([field, , part]: ProblemIssue["path"]): string {
-  const ofTask: Record<string, string> = { taskId: "task", durationMin: "minutes", wornPct: "worn_pct" };
+  const ofTask: Record<string, string> = {
+    taskId: "task",
+    durationMin: "minutes",
+    wornPct: "worn_pct",
+  };
   const ofShift: Record<string, string> = {
-    localStart: "start", whichHour: "which_hour", lengthMin: "length_min", unaccounted: "unaccounted", note: "note", date: "date", reason: "", tasks: "minutes",
+    localStart: "start",
+    whichHour: "which_hour",
+    lengthMin: "length_min",
+    unaccounted: "unaccounted",
+    note: "note",
+    date: "date",
+    reason: "",
+    tasks: "minutes",
   };
   return (part !== undefined ? ofTask[String(part)] : ofShift[String(field)]) ?? "employee_number";
 }
@@ -39,14 +57,31 @@ interface Draft {
 }
 
 /** Lines that tell of one shift: the same worker, date and start. */
-const shiftKey = ({ cells }: CsvLine) => ["employee_number", "date", "start"].map((name) => cells.get(name) ?? "").join("\t");
-const shiftColumns = ["length_min", "crew", "which_hour", "whole_day", "unaccounted", "unaccounted_level_db", "note"];
+const shiftKey = ({ cells }: CsvLine) =>
+  ["employee_number", "date", "start"].map((name) => cells.get(name) ?? "").join("\t");
+const shiftColumns = [
+  "length_min",
+  "crew",
+  "which_hour",
+  "whole_day",
+  "unaccounted",
+  "unaccounted_level_db",
+  "note",
+];
 
 /** What a file of shifts would do, held to the same checks as a day's entry. */
-export async function draftShifts(actor: Actor, site: Site, file: CsvFile, reason: string | null): Promise<ImportDraft> {
+export async function draftShifts(
+  actor: Actor,
+  site: Site,
+  file: CsvFile,
+  reason: string | null,
+): Promise<ImportDraft> {
   const cells = new Cells(file, IMPORT_COLUMNS.shifts);
   const groups = [...groupBy(file.lines, shiftKey).values()];
-  const workers = await workersByNumber(site.id, groups.map(([first]) => first!.cells.get("employee_number") ?? ""));
+  const workers = await workersByNumber(
+    site.id,
+    groups.map(([first]) => first!.cells.get("employee_number") ?? ""),
+  );
   const taskIds = await idsByName("tasks", site.id);
   const crewIds = await idsByName("crews", site.id);
   const today = localDate(new Date(), site.timeZone);
@@ -58,7 +93,10 @@ export async function draftShifts(actor: Actor, site: Site, file: CsvFile, reaso
     if (!draft || cells.issues.length > before) return [];
     const { date, worker, facts, confirmsWholeDay } = draft;
     const issues = [
-      ...employmentIssues(date, worker), ...futureIssues(date, today), ...wholeDayIssues(facts.lengthMin, confirmsWholeDay), ...unknownTaskIssues(facts.tasks, known),
+      ...employmentIssues(date, worker),
+      ...futureIssues(date, today),
+      ...wholeDayIssues(facts.lengthMin, confirmsWholeDay),
+      ...unknownTaskIssues(facts.tasks, known),
     ];
     const startsAt = startOf(date, facts, site.timeZone, issues);
     refuseAll(cells, lines, issues);
@@ -67,31 +105,68 @@ export async function draftShifts(actor: Actor, site: Site, file: CsvFile, reaso
 
   const workerIds = [...new Set(drafts.map(({ worker }) => worker.id))];
   await lockWorkers(workerIds);
-  const nearby = groupBy(await shiftsAround(workerIds, drafts.map(({ date }) => date)), ({ workerId }) => workerId);
+  const nearby = groupBy(
+    await shiftsAround(
+      workerIds,
+      drafts.map(({ date }) => date),
+    ),
+    ({ workerId }) => workerId,
+  );
   const crewOf = await crewOn(site.id, workerIds);
   const accepted = drafts.map((draft) => {
     const { worker, date, facts } = draft;
-    const own = nearby.get(worker.id)?.find((shift) => shift.date === date && shift.localStart === facts.localStart) ?? null;
-    return { ...draft, own, state: own ? (isSameShift(facts, own) ? "unchanged" as const : "changed" as const) : "fresh" as const };
+    const own =
+      nearby
+        .get(worker.id)
+        ?.find((shift) => shift.date === date && shift.localStart === facts.localStart) ?? null;
+    return {
+      ...draft,
+      own,
+      state: own
+        ? isSameShift(facts, own)
+          ? ("unchanged" as const)
+          : ("changed" as const)
+        : ("fresh" as const),
+    };
   });
   refuseOverlaps(cells, accepted, nearby);
   if (reason === null) {
-    for (const { lines, state } of accepted) if (state === "changed") cells.refuse(lines[0]!, "", "reason-missing");
+    for (const { lines, state } of accepted)
+      if (state === "changed") cells.refuse(lines[0]!, "", "reason-missing");
   }
 
-  const count = (state: (typeof accepted)[number]["state"]) => accepted.filter((one) => one.state === state).length;
+  const count = (state: (typeof accepted)[number]["state"]) =>
+    accepted.filter((one) => one.state === state).length;
   return {
-    fresh: count("fresh"), changed: count("changed"), unchanged: count("unchanged"),
+    fresh: count("fresh"),
+    changed: count("changed"),
+    unchanged: count("unchanged"),
     days: drafts.map(({ worker, date }) => ({ workerId: worker.id, date })),
     issues: cells.issues,
     store: async (entryId) => {
-      const shifts = accepted.filter(({ state }) => state !== "unchanged").map(({ own, worker, date, facts, startsAt, crewName }): CheckedShift => ({
-        shiftId: own?.shiftId ?? null, number: (own?.revision ?? 0) + 1, siteId: site.id, workerId: worker.id,
-        crewId: own?.crewId ?? (crewName === null ? crewOf(worker.id, date) : crewIds.get(crewName)!), date, timeZone: site.timeZone,
-        localStart: facts.localStart, lengthMin: facts.lengthMin, startsAt, unaccounted: facts.unaccounted, tasks: facts.tasks, note: facts.note,
-        reason: own ? reason : null,
-      }));
-      for (let from = 0; from < shifts.length; from += BATCH) await storeShifts(actor, entryId, shifts.slice(from, from + BATCH));
+      const shifts = accepted
+        .filter(({ state }) => state !== "unchanged")
+        .map(
+          ({ own, worker, date, facts, startsAt, crewName }): CheckedShift => ({
+            shiftId: own?.shiftId ?? null,
+            number: (own?.revision ?? 0) + 1,
+            siteId: site.id,
+            workerId: worker.id,
+            crewId:
+              own?.crewId ?? (crewName === null ? crewOf(worker.id, date) : crewIds.get(crewName)!),
+            date,
+            timeZone: site.timeZone,
+            localStart: facts.localStart,
+            lengthMin: facts.lengthMin,
+            startsAt,
+            unaccounted: facts.unaccounted,
+            tasks: facts.tasks,
+            note: facts.note,
+            reason: own ? reason : null,
+          }),
+        );
+      for (let from = 0; from < shifts.length; from += BATCH)
+        await storeShifts(actor, entryId, shifts.slice(from, from + BATCH));
       return shifts.map(({ workerId, date }) => ({ workerId, date }));
     },
   };
@@ -105,19 +180,26 @@ function refuseAll(cells: Cells, lines: readonly CsvLine[], issues: readonly Pro
 }
 
 function readShift(
-  cells: Cells, lines: CsvLine[], workers: ReadonlyMap<string, ImportWorker>, taskIds: ReadonlyMap<string, string>, crewIds: ReadonlyMap<string, string>,
+  cells: Cells,
+  lines: CsvLine[],
+  workers: ReadonlyMap<string, ImportWorker>,
+  taskIds: ReadonlyMap<string, string>,
+  crewIds: ReadonlyMap<string, string>,
 ): Omit<Draft, "startsAt"> | null {
   const first = lines[0]!;
   for (const line of lines.slice(1)) {
     for (const name of shiftColumns) {
-      if ((line.cells.get(name) ?? "") !== (first.cells.get(name) ?? "")) cells.refuse(line, name, "differs-within-shift", { line: first.line });
+      if ((line.cells.get(name) ?? "") !== (first.cells.get(name) ?? ""))
+        cells.refuse(line, name, "differs-within-shift", { line: first.line });
     }
   }
   const number = cells.needed(first, "employee_number");
   const worker = number === null ? undefined : workers.get(number);
   if (number !== null && !worker) cells.refuse(first, "employee_number", "worker-unknown");
   const date = cells.date(first, "date");
-  const localStart = cells.time(first, "start") ?? (first.cells.get("start") ? null : cells.refuse(first, "start", "empty"));
+  const localStart =
+    cells.time(first, "start") ??
+    (first.cells.get("start") ? null : cells.refuse(first, "start", "empty"));
   const lengthMin = cells.neededNumber(first, "length_min");
   const crewName = cells.text(first, "crew");
   if (crewName !== null && !crewIds.has(crewName)) cells.refuse(first, "crew", "crew-unknown");
@@ -130,17 +212,29 @@ function readShift(
     }
     const taskId = taskIds.get(name) ?? cells.refuse(line, "task", "task-unknown");
     const durationMin = cells.neededNumber(line, "minutes");
-    return taskId === null || durationMin === null ? [] : [{ taskId, durationMin, wornPct, wornIsShiftWide: false }];
+    return taskId === null || durationMin === null
+      ? []
+      : [{ taskId, durationMin, wornPct, wornIsShiftWide: false }];
   });
-  const how = cells.choice(first, "unaccounted", ["unknown", "like-the-rest", "quiet"]) ?? "unknown";
+  const how =
+    cells.choice(first, "unaccounted", ["unknown", "like-the-rest", "quiet"]) ?? "unknown";
   const quietDb = cells.number(first, "unaccounted_level_db");
   if (how === "quiet" && quietDb === null) cells.refuse(first, "unaccounted_level_db", "empty");
-  if (how !== "quiet" && quietDb !== null) cells.refuse(first, "unaccounted_level_db", "only-where-quiet");
-  const unaccounted: Unaccounted = how === "quiet" ? { how, levelDb: quietDb ?? Number.NaN } : { how };
+  if (how !== "quiet" && quietDb !== null)
+    cells.refuse(first, "unaccounted_level_db", "only-where-quiet");
+  const unaccounted: Unaccounted =
+    how === "quiet" ? { how, levelDb: quietDb ?? Number.NaN } : { how };
   const whichHour = cells.choice(first, "which_hour", ["first", "second"]);
   const confirmsWholeDay = cells.choice(first, "whole_day", ["yes"]) === "yes";
   if (!worker || date === null || localStart === null || lengthMin === null) return null;
-  const parsed = ShiftFacts.safeParse({ localStart, whichHour, lengthMin, unaccounted, tasks, note: cells.text(first, "note") });
+  const parsed = ShiftFacts.safeParse({
+    localStart,
+    whichHour,
+    lengthMin,
+    unaccounted,
+    tasks,
+    note: cells.text(first, "note"),
+  });
   if (!parsed.success) {
     refuseAll(cells, lines, parsed.error.issues.map(toProblemIssue));
     return null;
@@ -151,29 +245,50 @@ function readShift(
   return { lines, worker, date, facts: parsed.data, confirmsWholeDay, crewName };
 }
 
-async function shiftsAround(workerIds: readonly string[], dates: readonly string[]): Promise<SavedShiftRow[]> {
+async function shiftsAround(
+  workerIds: readonly string[],
+  dates: readonly string[],
+): Promise<SavedShiftRow[]> {
   if (workerIds.length === 0) return [];
   const sorted = dates.toSorted();
-  return savedShifts("s.worker_id = ANY (CAST(:ids AS uuid[])) AND s.date BETWEEN CAST(:from AS date) AND CAST(:to AS date)", {
-    ids: `{${workerIds.join(",")}}`, from: addDays(sorted[0]!, -2), to: addDays(sorted.at(-1)!, 2),
-  });
+  return savedShifts(
+    "s.worker_id = ANY (CAST(:ids AS uuid[])) AND s.date BETWEEN CAST(:from AS date) AND CAST(:to AS date)",
+    {
+      ids: `{${workerIds.join(",")}}`,
+      from: addDays(sorted[0]!, -2),
+      to: addDays(sorted.at(-1)!, 2),
+    },
+  );
 }
 
-/** Against what is stored, and among the file's own shifts. */
+/** Against what is stored, and among the file's own shifts: in the order of their starts each is held to the longest before it. */
 function refuseOverlaps(
-  cells: Cells, accepted: readonly (Draft & { own: SavedShiftRow | null })[], nearby: ReadonlyMap<string, SavedShiftRow[]>,
+  cells: Cells,
+  accepted: readonly (Draft & { own: SavedShiftRow | null })[],
+  nearby: ReadonlyMap<string, SavedShiftRow[]>,
 ): void {
-  const span = ({ date, facts, startsAt }: Draft) => ({ date, localStart: facts.localStart, lengthMin: facts.lengthMin, startsAt });
-  for (const ofWorker of groupBy(accepted, ({ worker }) => worker.id).values()) {
+  const endOf = ({ startsAt, lengthMin }: { startsAt: Date; lengthMin: number }) =>
+    startsAt.getTime() + lengthMin * 60_000;
+  for (const [workerId, ofWorker] of groupBy(accepted, ({ worker }) => worker.id)) {
     const replaced = new Set(ofWorker.map(({ own }) => own?.shiftId));
-    const stored = (nearby.get(ofWorker[0]!.worker.id) ?? []).filter(({ shiftId }) => !replaced.has(shiftId));
-    const inOrder = ofWorker.toSorted((a, b) => a.startsAt.getTime() - b.startsAt.getTime());
-    // In the order of their starts a shift can meet only those shortly before it; none is longer than a day.
-    const meets = (at: number, list: readonly { startsAt: Date }[]) => list.filter(({ startsAt }) => Math.abs(startsAt.getTime() - at) <= 86_400_000);
-    inOrder.forEach((draft, index) => {
-      const at = draft.startsAt.getTime();
-      const others = [...stored.filter(({ startsAt }) => meets(at, [{ startsAt }]).length > 0), ...inOrder.slice(Math.max(0, index - 24), index).map(span)];
-      refuseAll(cells, draft.lines, overlapIssues(span(draft), others));
-    });
+    const spans = [
+      ...(nearby.get(workerId) ?? [])
+        .filter(({ shiftId }) => !replaced.has(shiftId))
+        .map((shift) => ({ ...shift, lines: null })),
+      ...ofWorker.map(({ date, facts: { localStart, lengthMin }, startsAt, lines }) => ({
+        date,
+        localStart,
+        lengthMin,
+        startsAt,
+        lines,
+      })),
+    ].sort((a, b) => a.startsAt.getTime() - b.startsAt.getTime());
+    let longest = spans[0];
+    for (const span of spans.slice(1)) {
+      if (!longest) break;
+      if (span.lines) refuseAll(cells, span.lines, overlapIssues(span, [longest]));
+      else if (longest.lines) refuseAll(cells, longest.lines, overlapIssues(longest, [span]));
+      if (endOf(span) > endOf(longest)) longest = span;
+    }
   }
 }

@@ -1,5 +1,5 @@
-import type { ProblemIssue } from "../../shared/schemas/problem";
 import type { ImportIssue } from "../../shared/schemas/import";
+import type { ProblemIssue } from "../../shared/schemas/problem";
 import type { DayKey } from "../queries/day-inputs";
 
 /** What a file would do, found out before anything is stored. */
@@ -28,6 +28,8 @@ export function toProblemIssue(found: SchemaIssue): ProblemIssue {
     const { code, ...params } = found.params as { code: string } & ProblemIssue["params"];
     return { path, code, params };
   }
-  const bounds = Object.entries(found).filter(([name, value]) => (name === "minimum" || name === "maximum") && typeof value === "number");
+  const bounds = Object.entries(found).filter(
+    ([name, value]) => (name === "minimum" || name === "maximum") && typeof value === "number",
+  );
   return { path, code: found.code, params: Object.fromEntries(bounds) as ProblemIssue["params"] };
 }

@@ -18,12 +18,18 @@ export interface CsvFile {
   issues: ImportIssue[];
 }
 
-const headerName = (cell: string) => cell.trim().toLowerCase().replace(/[\s-]+/g, "_");
+const headerName = (cell: string) =>
+  cell
+    .trim()
+    .toLowerCase()
+    .replace(/[\s-]+/g, "_");
 
 /** The delimiter under which the header has most of the columns. */
 function delimiterOf(text: string, names: ReadonlySet<string>): Delimiter {
   const header = /^\uFEFF?([^\r\n]*)/.exec(text)?.[1] ?? "";
-  const known = (delimiter: string) => header.split(delimiter).filter((cell) => names.has(headerName(cell.replaceAll('"', "")))).length;
+  const known = (delimiter: string) =>
+    header.split(delimiter).filter((cell) => names.has(headerName(cell.replaceAll('"', ""))))
+      .length;
   const [best] = ([",", ";", "\t"] as const).toSorted((a, b) => known(b) - known(a));
   return best!;
 }
@@ -39,7 +45,8 @@ function headerIssues(header: readonly string[], columns: readonly ImportColumn[
     if (!known.has(name)) add(name, "column-unknown");
     else if (header.indexOf(name) < index) add(name, "column-twice");
   });
-  for (const { name, isRequired } of columns) if (isRequired && !header.includes(name)) add(name, "column-missing");
+  for (const { name, isRequired } of columns)
+    if (isRequired && !header.includes(name)) add(name, "column-missing");
   return issues;
 }
 
@@ -54,14 +61,23 @@ function* pieces(text: string): Generator<string> {
  *
  * @throws AppError too-large, beyond so many lines.
  */
-export async function readCsv(text: string, columns: readonly ImportColumn[], linesLimit: number): Promise<CsvFile> {
+export async function readCsv(
+  text: string,
+  columns: readonly ImportColumn[],
+  linesLimit: number,
+): Promise<CsvFile> {
   const delimiter = delimiterOf(text, new Set(columns.map(({ name }) => name)));
-  const parser = Readable.from(pieces(text)).pipe(parse({ bom: true, delimiter, info: true, relax_column_count: true, skip_empty_lines: true }));
+  const parser = Readable.from(pieces(text)).pipe(
+    parse({ bom: true, delimiter, info: true, relax_column_count: true, skip_empty_lines: true }),
+  );
   const lines: CsvLine[] = [];
   const issues: ImportIssue[] = [];
   let header: string[] | null = null;
   try {
-    for await (const { record, info } of parser as AsyncIterable<{ record: string[]; info: Info<string> }>) {
+    for await (const { record, info } of parser as AsyncIterable<{
+      record: string[];
+      info: Info;
+    }>) {
       if (!header) {
         header = record.map(headerName);
         issues.push(...headerIssues(header, columns));
@@ -72,16 +88,25 @@ export async function readCsv(text: string, columns: readonly ImportColumn[], li
       if (lines.length >= linesLimit) throw new AppError("too-large", 413, { linesLimit });
       const line = info.lines;
       if (record.length !== header.length) {
-        issues.push({ line, field: "", code: "field-count", params: { expected: header.length, found: record.length } });
+        issues.push({
+          line,
+          field: "",
+          code: "field-count",
+          params: { expected: header.length, found: record.length },
+        });
         continue;
       }
-      lines.push({ line, cells: new Map(header.map((name, index) => [name, unguarded(record[index]!.trim())])) });
+      lines.push({
+        line,
+        cells: new Map(header.map((name, index) => [name, unguarded(record[index]!.trim())])),
+      });
     }
   } catch (error) {
     const { code, lines: line } = error as { code?: string; lines?: number };
     if (!code?.startsWith("CSV_")) throw error;
     issues.push({ line: line ?? 0, field: "", code: "quote-broken", params: {} });
   }
-  if (header && lines.length === 0 && issues.length === 0) issues.push({ line: 1, field: "", code: "no-lines", params: {} });
+  if (header && lines.length === 0 && issues.length === 0)
+    issues.push({ line: 1, field: "", code: "no-lines", params: {} });
   return { delimiter, lines, issues };
 }

@@ -9,7 +9,10 @@ export interface ImportWorker {
 }
 
 /** Workers of a site by employee number; those whom one of its crews has or had on loan are among them. */
-export async function workersByNumber(siteId: string, numbers: Iterable<string>): Promise<Map<string, ImportWorker>> {
+export async function workersByNumber(
+  siteId: string,
+  numbers: Iterable<string>,
+): Promise<Map<string, ImportWorker>> {
   const found = await rows<ImportWorker>(
     `SELECT w.id, w.employee_number AS "employeeNumber", w.hired_on::text AS "hiredOn", w.left_on::text AS "leftOn"
      FROM workers w JOIN jsonb_array_elements_text(CAST(:numbers AS jsonb)) n ON n = w.employee_number
@@ -19,8 +22,14 @@ export async function workersByNumber(siteId: string, numbers: Iterable<string>)
   return new Map(found.map((worker) => [worker.employeeNumber, worker]));
 }
 
-export async function idsByName(table: "tasks" | "crews", siteId: string): Promise<Map<string, string>> {
-  const found = await rows<{ id: string; name: string }>(`SELECT id, name FROM ${table} WHERE site_id = :siteId`, { siteId });
+export async function idsByName(
+  table: "tasks" | "crews",
+  siteId: string,
+): Promise<Map<string, string>> {
+  const found = await rows<{ id: string; name: string }>(
+    `SELECT id, name FROM ${table} WHERE site_id = :siteId`,
+    { siteId },
+  );
   return new Map(found.map(({ id, name }) => [name.normalize("NFC"), id]));
 }
 
@@ -34,7 +43,10 @@ interface Membership {
 }
 
 /** The crew of a site with which a worker was on a date, a loan last; by the memberships of that date. */
-export async function crewOn(siteId: string, workerIds: Iterable<string>): Promise<(workerId: string, date: string) => string | null> {
+export async function crewOn(
+  siteId: string,
+  workerIds: Iterable<string>,
+): Promise<(workerId: string, date: string) => string | null> {
   const found = await rows<Membership>(
     `SELECT m.worker_id AS "workerId", m.crew_id AS "crewId", lower(m.valid)::text AS "fromDate", (upper(m.valid) - 1)::text AS "toDate", m.is_loan AS "isLoan"
      FROM crew_memberships m JOIN crews c ON c.id = m.crew_id
@@ -43,5 +55,8 @@ export async function crewOn(siteId: string, workerIds: Iterable<string>): Promi
   );
   const byWorker = groupBy(found, ({ workerId }) => workerId);
   return (workerId, date) =>
-    byWorker.get(workerId)?.find(({ fromDate, toDate }) => fromDate <= date && (toDate === null || date <= toDate))?.crewId ?? null;
+    byWorker
+      .get(workerId)
+      ?.find(({ fromDate, toDate }) => fromDate <= date && (toDate === null || date <= toDate))
+      ?.crewId ?? null;
 }

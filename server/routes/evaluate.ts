@@ -1,6 +1,4 @@
-import { evaluateDay } from "../../shared/acoustics/day";
-import { buildWorking } from "../../shared/acoustics/working";
-import { ruleSetInForce } from "../../shared/rule-sets";
+import { evaluateRequest, RuleSetNotInForce } from "../../shared/day/evaluate-request";
 import { EvaluateInput, EvaluateView } from "../../shared/schemas/evaluation";
 import { endpoint } from "../lib/endpoint";
 import { issue, unprocessable } from "../lib/errors";
@@ -15,30 +13,14 @@ export function defineEvaluateRoutes(): void {
       reply: EvaluateView,
       storesNothing: true,
     },
-    ({ body }) => evaluate(body),
+    ({ body }) => {
+      try {
+        return evaluateRequest(body);
+      } catch (error) {
+        if (!(error instanceof RuleSetNotInForce)) throw error;
+        const { path, key, date } = error;
+        throw unprocessable([issue(path, "rule-set-not-in-force", { key, date })]);
+      }
+    },
   );
-}
-
-/** The same for the API and for the command line: the record's own engine on a whole day. */
-export function evaluate({
-  day,
-  governingRuleSet,
-  comparisonRuleSets,
-  withWorking,
-}: EvaluateInput) {
-  const find = (key: string, path: (string | number)[]) => {
-    const found = ruleSetInForce(key, day.date);
-    if (!found)
-      throw unprocessable([issue(path, "rule-set-not-in-force", { key, date: day.date })]);
-    return found;
-  };
-  const governing = find(governingRuleSet, ["governingRuleSet"]);
-  const comparison = comparisonRuleSets.map((key, index) =>
-    find(key, ["comparisonRuleSets", index]),
-  );
-  const evaluation = evaluateDay(day, governing, comparison);
-  return {
-    evaluation,
-    working: withWorking ? buildWorking(day, governing, comparison, evaluation) : null,
-  };
 }

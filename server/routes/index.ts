@@ -8,6 +8,7 @@ import { defineDayRoutes } from "./days";
 import { defineEvaluateRoutes } from "./evaluate";
 import { defineExportRoutes } from "./exports";
 import { defineFindingRoutes } from "./findings";
+import { defineImportRoutes } from "./imports";
 import { defineInstrumentRoutes } from "./instruments";
 import { defineJobRoutes } from "./jobs";
 import { defineNoticeRoutes } from "./notices";
@@ -34,6 +35,7 @@ export function defineRoutes(config: Config<"web">): void {
   defineAssignmentRoutes();
   defineAuditRoutes();
   defineCrewRoutes();
+  defineImportRoutes();
   defineInstrumentRoutes();
   defineJobRoutes();
   definePreviewRoutes();

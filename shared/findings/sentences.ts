@@ -71,7 +71,7 @@ export function orderSentence(
     case "over-limit-at-ear":
       return remedy
         ? giveRemedy(i18n, remedy)
-        : i18n.t("Shorten the time in noise; no protector on the register is enough");
+        : i18n.t("Shorten the time in noise; no one protector of the register fits the day");
     case "protects-too-little":
       if (remedy) return giveRemedy(i18n, remedy);
       return task

@@ -66,6 +66,12 @@ export function formatShortDate(isoDate: string, locale: Locale): string {
     : `${day} ${short(month)} ${year}`;
 }
 
+/** "8 Apr", "8. Apr": within the year, for columns. */
+export function formatDayMonth(isoDate: string, locale: Locale): string {
+  const { day, month } = localParts(isoDate, locale);
+  return locale === "de" ? `${day}. ${short(month)}` : `${day} ${short(month)}`;
+}
+
 /** "Thu 3", "Do 3.": within the week. */
 export function formatWeekday(isoDate: string, locale: Locale): string {
   const { weekday, day } = localParts(isoDate, locale, "short");

@@ -1,6 +1,12 @@
 import { useLingui } from "@lingui/react";
 import type { ReactNode } from "react";
-import { type FieldPath, type FieldValues, get, type UseFormReturn, useController } from "react-hook-form";
+import {
+  type FieldPath,
+  type FieldValues,
+  get,
+  type UseFormReturn,
+  useController,
+} from "react-hook-form";
 import { OCTAVE_BANDS_HZ } from "../../shared/acoustics/types";
 import { parseNumber } from "../../shared/format/number";
 import { useLocale } from "../lib/i18n";
@@ -33,7 +39,9 @@ function faultsOf(errors: unknown, path: string, missing: (hz: number) => string
   return OCTAVE_BANDS_HZ.flatMap((hz, band) => {
     const found = get(errors, `${path}.${band}`) as { type?: string; message?: string } | undefined;
     if (!found?.message) return [];
-    return [{ band, message: found.type === "invalid_type" ? missing(hz) : `${hz} Hz: ${found.message}` }];
+    return [
+      { band, message: found.type === "invalid_type" ? missing(hz) : `${hz} Hz: ${found.message}` },
+    ];
   });
 }
 
@@ -97,7 +105,9 @@ export function BandFields<Values extends FieldValues, Output>({
   );
   const own = get(errors, name) as { message?: unknown } | undefined;
   const rowErrors = rows.map((row) =>
-    row.key === undefined ? undefined : (get(errors, `${name}.${row.key}`) as { message?: unknown }),
+    row.key === undefined
+      ? undefined
+      : (get(errors, `${name}.${row.key}`) as { message?: unknown }),
   );
   const messages = [
     ...[own, ...rowErrors].flatMap((error) =>
@@ -121,8 +131,8 @@ export function BandFields<Values extends FieldValues, Output>({
               <legend className={rows.length === 1 ? "sr-only" : undefined}>{row.label}</legend>
               <div className="band-cells">
                 {OCTAVE_BANDS_HZ.map((hz, band) => (
-                  <label key={hz}>
-                    <span>{hz >= 1000 ? `${hz / 1000} k` : hz}</span>
+                  <div key={hz}>
+                    <span aria-hidden="true">{hz >= 1000 ? `${hz / 1000} k` : hz}</span>
                     <NumberInput
                       className="input band-input"
                       aria-label={i18n.t("{row}, {hz} Hz", { row: row.label, hz })}
@@ -143,7 +153,7 @@ export function BandFields<Values extends FieldValues, Output>({
                       }}
                       onBlur={field.onBlur}
                     />
-                  </label>
+                  </div>
                 ))}
               </div>
             </fieldset>

@@ -127,7 +127,10 @@ export function BandPicture({
                   {kind === "active" ? (
                     <circle className="band-ring" cx={x(band)} cy={y(db)} r="3" />
                   ) : (
-                    <path className="band-tick" d={`M${x(band) - TICK_HALF} ${y(db)}h${2 * TICK_HALF}`} />
+                    <path
+                      className="band-tick"
+                      d={`M${x(band) - TICK_HALF} ${y(db)}h${2 * TICK_HALF}`}
+                    />
                   )}
                 </g>
               );

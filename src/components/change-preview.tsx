@@ -6,7 +6,10 @@ import type { z } from "zod";
 import type { ProtectorWord, Verdict as VerdictCode } from "../../shared/acoustics/types";
 import { formatShortDate } from "../../shared/format/date";
 import { formatNumber } from "../../shared/format/number";
-import { ChangePreview, RecomputeProgress as RecomputeProgressView } from "../../shared/schemas/site";
+import {
+  ChangePreview,
+  RecomputeProgress as RecomputeProgressView,
+} from "../../shared/schemas/site";
 import { api } from "../lib/api";
 import { useLocale } from "../lib/i18n";
 import { problemText } from "../lib/problem-text";
@@ -53,7 +56,9 @@ function lineWord(i18n: I18n, line: Change["line"]): string {
 }
 
 /** "At the ear: 212 days become Can’t tell yet", the most frequent first. */
-function tally(changes: readonly Change[]): { line: Change["line"]; after: string; count: number }[] {
+function tally(
+  changes: readonly Change[],
+): { line: Change["line"]; after: string; count: number }[] {
   const counts = new Map<string, { line: Change["line"]; after: string; count: number }>();
   for (const { line, after } of changes) {
     const found = counts.get(`${line} ${after}`);
@@ -96,7 +101,8 @@ export function ChangeReview({
   const head = useRef<HTMLHeadingElement>(null);
   useEffect(() => head.current?.focus(), []);
   const { days, workers, changes, changedDays, tooMany } = preview;
-  const isWhole = new Set(changes.map(({ workerId, date }) => `${workerId} ${date}`)).size >= changedDays;
+  const isWhole =
+    new Set(changes.map(({ workerId, date }) => `${workerId} ${date}`)).size >= changedDays;
   const many = (count: number) => formatNumber(count, 0, locale);
   return (
     <section className="section review" aria-labelledby="review-head">
@@ -128,10 +134,13 @@ export function ChangeReview({
                         count,
                         word: stateWord(i18n, after),
                       })
-                    : i18n.t("at least {count, plural, one {# day becomes} other {# days become}} {word}", {
-                        count,
-                        word: stateWord(i18n, after),
-                      })}
+                    : i18n.t(
+                        "at least {count, plural, one {# day becomes} other {# days become}} {word}",
+                        {
+                          count,
+                          word: stateWord(i18n, after),
+                        },
+                      )}
                 </b>
               </li>
             ))}
@@ -147,7 +156,9 @@ export function ChangeReview({
                 isRowHead: true,
                 sortValue: (change) => change.workerName,
                 cell: (change) => (
-                  <TextLink to={workerPath(change.workerId, change.date)}>{change.workerName}</TextLink>
+                  <TextLink to={workerPath(change.workerId, change.date)}>
+                    {change.workerName}
+                  </TextLink>
                 ),
               },
               {
@@ -183,9 +194,7 @@ export function ChangeReview({
           )}
         </>
       )}
-      {changes.length === 0 && days === 0 && (
-        <Empty title={i18n.t("No day rests on this yet.")} />
-      )}
+      {changes.length === 0 && days === 0 && <Empty title={i18n.t("No day rests on this yet.")} />}
       {error !== null && error !== undefined && (
         <p className="field-error" role="alert">
           {problemText(i18n, error)}
@@ -210,7 +219,8 @@ export function RecomputeProgress() {
   const [mostLeft, setMostLeft] = useState(0);
   const { data } = useQuery({
     queryKey: ["recompute-progress"],
-    queryFn: ({ signal }) => api.get("/recompute-progress", { schema: RecomputeProgressView, signal }),
+    queryFn: ({ signal }) =>
+      api.get("/recompute-progress", { schema: RecomputeProgressView, signal }),
     refetchInterval: (query) => ((query.state.data?.daysLeft ?? 0) > 0 ? POLL_MS : false),
     staleTime: 0,
   });

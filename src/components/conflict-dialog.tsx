@@ -53,11 +53,7 @@ export function ConflictDialog<Body extends object, View extends { revision: num
       lead={i18n.t("Nothing of yours is lost; choose what stands.")}
       actions={
         <>
-          <Button
-            kind="primary"
-            isBusy={isSaving}
-            onClick={() => onSave(chosen, saved.revision)}
-          >
+          <Button kind="primary" isBusy={isSaving} onClick={() => onSave(chosen, saved.revision)}>
             {i18n.t("Save as chosen, revision {number}", { number: saved.revision + 1 })}
           </Button>
           <Button onClick={() => onKeepSaved(saved)}>

@@ -18,8 +18,7 @@ export function NumberInput({
 }) {
   const locale = useLocale();
   const [typed, setTyped] = useState<{ text: string; value: Typed } | null>(null);
-  const written =
-    value instanceof Unreadable ? value.text : editNumber(value ?? null, locale);
+  const written = value instanceof Unreadable ? value.text : editNumber(value ?? null, locale);
   return (
     <input
       inputMode="decimal"

@@ -1,7 +1,11 @@
 import { useSearchParams } from "react-router-dom";
 
 /** What a register page has open for change, kept in its address: an id, or "new". */
-export function useEditParam(): { editing: string | null; edit: (id: string) => void; close: () => void } {
+export function useEditParam(): {
+  editing: string | null;
+  edit: (id: string) => void;
+  close: () => void;
+} {
   const [search, setSearch] = useSearchParams();
   const put = (id: string | null) =>
     setSearch(

@@ -110,6 +110,38 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("This date lies ahead.");
     case "before-hire":
       return i18n.t("This worker was hired later than that.");
+    case "after-leaving":
+      return i18n.t("This worker had left before that.");
+    case "snr-below-l":
+      return i18n.t("The SNR lies below the L of the same label. One of them is wrong.");
+    case "hml-all-three":
+      return i18n.t("H, M and L belong together: all three, or none.");
+    case "deviation-negative":
+      return i18n.t("A standard deviation can’t be negative.");
+    case "band-missing":
+      return i18n.t("Mean and deviation of a band belong together.");
+    case "delay-and-gain-together":
+      return i18n.t("Delay and gain belong together: both, or none.");
+    case "reason-needed":
+      return i18n.t("A reason is needed: what is there already changes.");
+    case "kind-fixed":
+      return i18n.t("Somebody has worn it: the kind stays. Add another protector instead.");
+    case "date-too-early":
+      return i18n.t("This date lies too far back.");
+    case "date-too-far-ahead":
+      return i18n.t("This date lies more than a year ahead.");
+    case "rule-set-not-in-force":
+      return i18n.t("This rule set was not in force on that day.");
+    case "rule-set-twice":
+      return i18n.t("A rule set stands here twice.");
+    case "task-of-other-site":
+      return i18n.t("This task belongs to another site.");
+    case "area-of-other-site":
+      return i18n.t("This area belongs to another site.");
+    case "tasks-longer-than-day":
+      return i18n.t("The tasks are longer than 24 hours.");
+    case "not-a-supervisor":
+      return i18n.t("This person is no supervisor at the crew’s site.");
     default:
       return i18n.t("This needs another look.");
   }

@@ -103,7 +103,10 @@ export function settingsWords(i18n: I18n, settings: MeterSettings, locale: Local
     criterion: formatLimit(criterionLevelDb, locale),
   };
   return thresholdDb === null
-    ? i18n.t("{exchange} dB, no threshold, {weighting}, {response}; criterion {criterion} dB", values)
+    ? i18n.t(
+        "{exchange} dB, no threshold, {weighting}, {response}; criterion {criterion} dB",
+        values,
+      )
     : i18n.t(
         "{exchange} dB, threshold {threshold}, {weighting}, {response}; criterion {criterion} dB",
         { ...values, threshold: formatLimit(thresholdDb, locale) },

@@ -1,3 +1,269 @@
+import { useLingui } from "@lingui/react";
+import { useQuery } from "@tanstack/react-query";
+import { useState } from "react";
+import { useParams } from "react-router-dom";
+import { noticedSentence, orderSentence, remedyFigure, remedyOf } from "../../shared/findings/sentences";
+import { findingStateWord, findingWord } from "../../shared/findings/words";
+import { formatDate, formatInstant, formatShortDate } from "../../shared/format/date";
+import { formatLevel, formatLimit } from "../../shared/format/level";
+import { ruleSetVersion } from "../../shared/rule-sets";
+import type { DayFigures, FindingView } from "../../shared/schemas/finding";
+import { Button, ButtonLink } from "../components/button";
+import { AtEarFigure, DayStrip, OutsideFigure, TableStripGround, TableStripScale, useTableFrame } from "../components/day-figures";
+import { type DataColumn, DataTable } from "../components/data-table";
+import { Empty } from "../components/empty";
+import { Failed } from "../components/failed";
+import { TextButton, TextLink } from "../components/link";
+import { Folio, MarginNote, PageBody, PageHead, Section } from "../components/page";
+import { ProtectorWord, protectorWordText } from "../components/protector-word";
+import { findingQueries } from "../features/findings/queries";
+import { StepForm } from "../features/findings/step-form";
+import { LookAtNotices } from "../features/notices/outgoing-notice";
+import { useUser } from "../features/session/session";
+import { useLocale } from "../lib/i18n";
+import { paths } from "../paths";
+import "../styles/findings.css";
+import "../styles/waiting.css";
+
 export function Component() {
-  return null;
+  const { i18n } = useLingui();
+  const { id = "" } = useParams();
+  const { data, error, refetch } = useQuery(findingQueries.one(id));
+  if (error && !data) {
+    return (
+      <PageBody>
+        <PageHead title={i18n.t("Finding")} />
+        <Failed error={error} onRetry={() => void refetch()} />
+      </PageBody>
+    );
+  }
+  if (!data) {
+    return (
+      <PageBody>
+        <PageHead title={i18n.t("Finding")} lead={<span className="loading-line" />} />
+      </PageBody>
+    );
+  }
+  return <Finding finding={data} />;
+}
+
+function Finding({ finding }: { finding: FindingView }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const { worker, kind, facts, figures } = finding;
+  const order = orderSentence(i18n, locale, kind, facts);
+  const figure = remedyFigure(locale, facts, (word) => protectorWordText(i18n, word));
+  const remedy = remedyOf(facts);
+  const ruleSet = figures && ruleSetVersion(figures.ruleSetKey, figures.ruleSetVersion);
+  const who = worker?.name ?? finding.subjectName;
+  return (
+    <>
+      <PageBody margin={<Margin finding={finding} />} marginWidthPx={240}>
+        <PageHead
+          way={
+            <>
+              <TextLink to={paths.findings}>{i18n.t("Findings")}</TextLink> /{" "}
+              {worker ? <TextLink to={paths.worker(worker.id)}>{`${worker.name}, ${worker.employeeNumber}`}</TextLink> : who}
+            </>
+          }
+          title={who ? i18n.t("{what}: {who}", { what: findingWord(i18n, kind), who }) : findingWord(i18n, kind)}
+          lead={
+            <>
+              <b>{findingStateWord(i18n, finding.state)}.</b> {noticedSentence(i18n, locale, kind, facts)}.
+            </>
+          }
+          actions={
+            remedy && worker && finding.can.handle && finding.state !== "closed" ? (
+              <ButtonLink kind="primary" to={`${paths.worker(worker.id)}?assign=${remedy.modelIds.join(",")}#protectors`}>
+                {i18n.t("Assign it")}
+              </ButtonLink>
+            ) : undefined
+          }
+        />
+        {finding.state !== "closed" && (
+          <p className="finding-order">
+            <b>{order}.</b> {figure && i18n.t("Worn throughout that would be {figure}.", { figure })}
+          </p>
+        )}
+        <Evidence finding={finding} />
+        <Section title={i18n.t("What was done")} id="steps">
+          <Steps finding={finding} />
+          <StepForm finding={finding} />
+        </Section>
+      </PageBody>
+      <Folio>{ruleSet && i18n.t("{title}, rule set version {version}.", { title: i18n._(ruleSet.title), version: ruleSet.version })}</Folio>
+    </>
+  );
+}
+
+/** The criterion that was exceeded: "uk-2005:limit" in words. */
+function useCriterionWords({ criterion, figures }: FindingView): string | null {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const [key = "", criterionId] = criterion.split(":");
+  if (!criterionId || !figures) return null;
+  const ruleSet = ruleSetVersion(key, figures.ruleSetVersion);
+  const found = ruleSet?.criteria.find(({ id }) => id === criterionId);
+  if (!ruleSet || !found) return null;
+  return i18n.t("{label} {value}, {citation}", {
+    label: i18n._(found.label),
+    value: formatLimit(found.levelDb ?? found.value, locale),
+    citation: `${ruleSet.citation}, ${found.citation}`,
+  });
+}
+
+function Evidence({ finding }: { finding: FindingView }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const { evidence, worker } = finding;
+  const frame = useTableFrame(evidence);
+  const columns: DataColumn<DayFigures>[] = [
+    {
+      id: "wrong",
+      head: i18n.t("Day"),
+      isRowHead: true,
+      cell: (day) => <TextLink to={worker ? paths.result(worker.id, day.date) : paths.storedResult(day.resultId)}>{formatShortDate(day.date, locale)}</TextLink>,
+      sortValue: ({ date }) => date,
+    },
+    { id: "at-ear", head: i18n.t("At the ear"), unit: i18n.t("day, dB"), cell: (day) => <AtEarFigure figures={day} />, sortValue: ({ atEarDb }) => atEarDb },
+    { id: "strip", kind: "strip", head: <TableStripScale frame={frame} />, widthPx: 216, filler: <TableStripGround frame={frame} />, cell: (day) => <DayStrip figures={day} isHidden /> },
+    { id: "outside", head: i18n.t("Without protection"), unit: i18n.t("day, dB"), cell: (day) => <OutsideFigure figures={day} />, sortValue: ({ outsideDb }) => outsideDb },
+    {
+      id: "todo",
+      head: i18n.t("Protector, while worn"),
+      cell: (day) =>
+        day.hasProtector === "no" ? (
+          <b>{i18n.t("No protector")}</b>
+        ) : (
+          <ProtectorWord
+            word={day.word}
+            beneath={day.whileWornDb === null ? undefined : [day.decidingTaskName, formatLevel(day.whileWornDb, locale)].filter(Boolean).join(" ")}
+          />
+        ),
+    },
+  ];
+  return (
+    <div className="stacked-table evidence-table">
+      <DataTable
+        caption={i18n.t("Days that show it, latest first")}
+        columns={columns}
+        rows={evidence}
+        rowKey={({ resultId }) => resultId}
+        isTwoLine
+        empty={
+          <Empty title={i18n.t("No day stands behind this finding.")}>
+            {finding.kind === "problem-reported" ? i18n.t("The worker reported it.") : i18n.t("The days that showed it were corrected.")}
+          </Empty>
+        }
+      />
+    </div>
+  );
+}
+
+function stepWords(i18n: ReturnType<typeof useLingui>["i18n"], step: FindingView["steps"][number]): string {
+  switch (step.kind) {
+    case "comment":
+      return i18n.t("Comment");
+    case "marked-done":
+      return i18n.t("Marked done");
+    case "cannot":
+      return i18n.t("Can’t, because");
+    case "evidence-gone":
+      return i18n.t("The day that showed it was corrected");
+    case "state":
+      return step.fromState === null && step.toState === "new"
+        ? i18n.t("Noticed")
+        : step.toState === "in-hand" && step.fromState === "done"
+          ? i18n.t("Reopened")
+          : step.toState
+            ? findingStateWord(i18n, step.toState)
+            : i18n.t("Changed");
+  }
+}
+
+function Steps({ finding }: { finding: FindingView }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const user = useUser();
+  const timeZone = user.sites.find(({ id }) => id === finding.siteId)?.timeZone ?? "UTC";
+  return (
+    <ol className="steps">
+      {finding.steps.map((step) => (
+        <li key={step.id}>
+          <time dateTime={step.at}>{formatInstant(step.at, timeZone, locale)}</time>
+          <span>
+            <b>{stepWords(i18n, step)}</b> <span className="by">{step.authorName ? i18n.t("by {name}", { name: step.authorName }) : step.kind === "state" ? i18n.t("by the program") : ""}</span>
+            {step.text && step.kind !== "evidence-gone" && <span className="said block">{step.text}</span>}
+          </span>
+        </li>
+      ))}
+    </ol>
+  );
+}
+
+function toldWord(i18n: ReturnType<typeof useLingui>["i18n"], state: string): string {
+  switch (state) {
+    case "waiting":
+      return i18n.t("will be told");
+    case "held":
+      return i18n.t("held");
+    case "sending":
+      return i18n.t("is being sent");
+    case "sent":
+      return i18n.t("was told");
+    case "possibly-sent":
+      return i18n.t("possibly sent");
+    case "failed":
+      return i18n.t("not sent");
+    default:
+      return i18n.t("withdrawn");
+  }
+}
+
+function Margin({ finding }: { finding: FindingView }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const user = useUser();
+  const [look, setLook] = useState<{ id: string; recipientName: string } | null>(null);
+  const criterion = useCriterionWords(finding);
+  const timeZone = user.sites.find(({ id }) => id === finding.siteId)?.timeZone ?? "UTC";
+  return (
+    <>
+      {criterion && (
+        <MarginNote title={i18n.t("What was exceeded")} isRuled>
+          <p>{criterion}</p>
+        </MarginNote>
+      )}
+      <MarginNote title={i18n.t("Since when, until when")}>
+        <p>
+          {finding.daysCount > 1
+            ? i18n.t("{count, plural, other {# days, {first} to {last}.}}", { count: finding.daysCount, first: formatDate(finding.firstDate, locale), last: formatDate(finding.lastDate, locale) })
+            : i18n.t("{date}.", { date: formatDate(finding.lastDate, locale) })}
+        </p>
+        {finding.dueOn && finding.state !== "closed" && <p>{i18n.t("Due {date}.", { date: formatDate(finding.dueOn, locale) })}</p>}
+        {finding.ownerName && <p>{i18n.t("In hand with {name}.", { name: finding.ownerName })}</p>}
+        {finding.closedOn && (
+          <p>
+            {i18n.t("Closed {date}", { date: formatDate(finding.closedOn, locale) })}
+            {finding.closingReason && finding.closingReason !== "evidence-gone" ? `: ${finding.closingReason}` : "."}
+          </p>
+        )}
+        {finding.previousId && (
+          <p>
+            <TextLink to={paths.finding(finding.previousId)}>{i18n.t("The finding that came back")}</TextLink>
+          </p>
+        )}
+      </MarginNote>
+      <MarginNote title={i18n.t("Who is told")}>
+        {finding.told.length === 0 && <p>{i18n.t("Nobody by mail; it waits on this page.")}</p>}
+        {finding.told.map((told) => (
+          <p key={told.noticeId}>
+            <b className="label-ink">{told.name}</b> {toldWord(i18n, told.state)}
+            {told.at && ` ${formatInstant(told.at, timeZone, locale)}`}. <TextButton onClick={() => setLook({ id: told.noticeId, recipientName: told.name })}>{i18n.t("Look")}</TextButton>
+          </p>
+        ))}
+      </MarginNote>
+      {look && <LookAtNotices notices={[look]} onClose={() => setLook(null)} actions={<Button onClick={() => setLook(null)}>{i18n.t("Close the letter")}</Button>} />}
+    </>
+  );
 }

@@ -4,4 +4,6 @@ import { paths } from "../paths";
 export const peopleRoutes: RouteObject[] = [
   { path: paths.crewSheet, lazy: () => import("./crew-sheet-page") },
   { path: paths.crewSheetOf(":crewId"), lazy: () => import("./crew-sheet-page") },
+  { path: paths.me, lazy: () => import("./me-page") },
+  { path: paths.yearFile, lazy: () => import("./year-file-page") },
 ];

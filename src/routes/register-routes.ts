@@ -1,3 +1,12 @@
 import type { RouteObject } from "react-router-dom";
+import { paths } from "../paths";
 
-export const registerRoutes: RouteObject[] = [];
+export const registerRoutes: RouteObject[] = [
+  { path: paths.protectors, lazy: () => import("./protectors-page") },
+  { path: paths.newProtector, lazy: () => import("./protector-form-page") },
+  { path: paths.protector(":id"), lazy: () => import("./protector-page") },
+  { path: paths.tasks, lazy: () => import("./tasks-page") },
+  { path: paths.task(":id"), lazy: () => import("./task-page") },
+  { path: paths.rules, lazy: () => import("./rules-page") },
+  { path: paths.site(":id"), lazy: () => import("./site-rules-page") },
+];

@@ -1,3 +1,202 @@
+import { useLingui } from "@lingui/react";
+import { useQuery } from "@tanstack/react-query";
+import { lazy, Suspense } from "react";
+import { useParams } from "react-router-dom";
+import { formatDate } from "../../shared/format/date";
+import { formatLevel } from "../../shared/format/level";
+import { ruleSetVersion } from "../../shared/rule-sets";
+import type { ResultView } from "../../shared/schemas/result";
+import { AtEarFigure, DayStrip, OutsideFigure, TableStripScale, useStripFrame } from "../components/day-figures";
+import { Failed } from "../components/failed";
+import { TextLink } from "../components/link";
+import { Folio, PageBody, PageHead } from "../components/page";
+import { hasRole, useUser } from "../features/session/session";
+import { dayResultQuery, storedResultQuery } from "../features/results/queries";
+import { ResultFacts } from "../features/results/result-facts";
+import { useLocale } from "../lib/i18n";
+import { useIsPhone } from "../lib/use-is-phone";
+import { paths } from "../paths";
+import "../styles/findings.css";
+import "../styles/result.css";
+
+// The engine and its words come when there is a result to take apart.
+const WorkingOf = lazy(async () => ({ default: (await import("../features/results/working-of")).WorkingOf }));
+
+/** How a working is called on paper: the start of its result's id. */
+const workingName = (id: string) => id.slice(0, 8);
+
 export function Component() {
-  return null;
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const { id = "", date } = useParams();
+  const user = useUser();
+  const day = useQuery({ ...dayResultQuery(id, date ?? ""), enabled: date !== undefined });
+  const storedOne = useQuery({ ...storedResultQuery(id), enabled: date === undefined });
+  const { data, error, refetch } = date === undefined ? storedOne : day;
+  const canListWorkers = hasRole(user, "officer", "auditor");
+  const ruleSet = data && ruleSetVersion(data.governing.key, data.governing.version);
+  const figures = data?.figures;
+  const title = !figures
+    ? date
+      ? i18n.t("Day of {date}: how", { date: formatDate(date, locale) })
+      : i18n.t("A result: how")
+    : figures.atEarDb !== null
+      ? i18n.t("At the ear {atEar}, outside {outside}: how", { atEar: formatLevel(figures.atEarDb, locale), outside: formatLevel(figures.outsideDb, locale, figures.outsideBound) })
+      : figures.outsideDb !== null
+        ? i18n.t("Outside {outside}: how", { outside: formatLevel(figures.outsideDb, locale, figures.outsideBound) })
+        : i18n.t("Not assessed: why");
+  return (
+    <div className="sheet">
+      <div className="sheet-head">
+        <div>
+          <b>Dinward</b>
+          <span>
+            {data && `${data.worker.name}, ${data.worker.employeeNumber} · ${formatDate(data.date, locale)}`}
+          </span>
+          <span>{data && i18n.t("Working {name}", { name: workingName(data.id) })}</span>
+        </div>
+      </div>
+      <div className="sheet-body">
+        <PageBody>
+          <PageHead
+            way={
+              <>
+                {canListWorkers && (
+                  <>
+                    <TextLink to={paths.workers}>{i18n.t("Workers")}</TextLink> /{" "}
+                  </>
+                )}
+                {data && (
+                  <>
+                    <TextLink to={paths.worker(data.worker.id)}>{`${data.worker.name}, ${data.worker.employeeNumber}`}</TextLink> / {dayWords(i18n, locale, data)}
+                  </>
+                )}
+              </>
+            }
+            title={title}
+            lead={
+              data && !data.isCurrent ? (
+                <>
+                  {i18n.t("An earlier result of this day.")}{" "}
+                  <TextLink to={paths.result(data.worker.id, data.date)}>{i18n.t("The one that stands now")}</TextLink>
+                </>
+              ) : undefined
+            }
+          />
+          {error && <Failed error={error} onRetry={() => void refetch()} />}
+          {!data && !error && <WorkingFrame />}
+          {data && (
+            <div className="working">
+              {data.input && data.evaluation ? (
+                <Suspense fallback={<WorkingFrame />}>
+                  <WorkingOf result={data} input={data.input} evaluation={data.evaluation} workingName={workingName(data.id)} strip={<ResultStrip result={data} />} />
+                </Suspense>
+              ) : (
+                <Imported result={data} />
+              )}
+            </div>
+          )}
+        </PageBody>
+      </div>
+      <div className="sheet-foot">
+        <Folio caution={i18n.t("An aid to screening. Local regulation, a qualified hygienist and a licensed audiologist decide.")}>
+          {data && ruleSet && i18n.t("{title}, rule set version {version}. Method version {method}. Working {name}.", { title: i18n._(ruleSet.title), version: ruleSet.version, method: data.methodVersion, name: workingName(data.id) })}
+        </Folio>
+      </div>
+    </div>
+  );
+}
+
+function dayWords(i18n: ReturnType<typeof useLingui>["i18n"], locale: ReturnType<typeof useLocale>, { date, shifts }: ResultView): string {
+  const day = i18n.t("Day of {date}", { date: formatDate(date, locale) });
+  const spans = shifts.map(({ localStart, lengthMin }) => i18n.t("shift {start} to {end}", { start: localStart, end: endOf(localStart, lengthMin) }));
+  return [day, ...spans].join(", ");
+}
+
+function endOf(start: string, lengthMin: number): string {
+  const min = (Number(start.slice(0, 2)) * 60 + Number(start.slice(3)) + lengthMin) % 1440;
+  return `${String(Math.floor(min / 60)).padStart(2, "0")}:${String(min % 60).padStart(2, "0")}`;
+}
+
+function ResultStrip({ result: { figures } }: { result: ResultView }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const isPhone = useIsPhone();
+  const frame = useStripFrame(figures);
+  const widthPx = isPhone ? 280 : 560;
+  const level = (db: number) => formatLevel(db, locale);
+  return (
+    <div className="working-strip">
+      <TableStripScale frame={frame} widthPx={widthPx} />
+      <DayStrip figures={figures} variant="card" widthPx={widthPx} k={2.3} />
+      <p className="working-strip-words">
+        {figures.whileWornDb !== null && (
+          <span>
+            {figures.decidingTaskName
+              ? i18n.t("▲ {level} while worn, {task}", { level: level(figures.whileWornDb), task: figures.decidingTaskName })
+              : i18n.t("▲ {level} while worn", { level: level(figures.whileWornDb) })}
+          </span>
+        )}
+        {figures.atEarActiveDb !== null && <span>{i18n.t("○ {level} with the active part on", { level: level(figures.atEarActiveDb) })}</span>}
+        {figures.atEarAsWorkedDb !== null && <span>{i18n.t("● {level} as worked", { level: level(figures.atEarAsWorkedDb) })}</span>}
+      </p>
+    </div>
+  );
+}
+
+/** Levels only: a past year that came in as a file. */
+function Imported({ result }: { result: ResultView }) {
+  const { i18n } = useLingui();
+  return (
+    <div className="working-top">
+      <div>
+        <table className="working-lines">
+          <caption className="sr-only">{i18n.t("The result")}</caption>
+          <tbody>
+            <tr>
+              <th scope="row">{i18n.t("At the ear")}</th>
+              <td>
+                <AtEarFigure figures={result.figures} />
+              </td>
+            </tr>
+            <tr className="is-quiet">
+              <th scope="row">{i18n.t("Without protection")}</th>
+              <td>
+                <OutsideFigure figures={result.figures} />
+              </td>
+            </tr>
+          </tbody>
+        </table>
+        <ResultStrip result={result} />
+        <p>
+          <b>{i18n.t("Imported, working not available.")}</b>{" "}
+          {i18n.t("This day came in with its levels only; the tasks and readings behind it are not on record here.")}
+        </p>
+      </div>
+      <ResultFacts result={result} workingName={workingName(result.id)} />
+    </div>
+  );
+}
+
+const FRAME_LINES = ["ear", "protector", "outside"];
+
+function WorkingFrame() {
+  return (
+    <div className="working-top" aria-busy="true">
+      <table className="working-lines">
+        <tbody>
+          {FRAME_LINES.map((key) => (
+            <tr key={key}>
+              <td>
+                <span className="loading-line" />
+              </td>
+              <td>
+                <span className="loading-line" />
+              </td>
+            </tr>
+          ))}
+        </tbody>
+      </table>
+    </div>
+  );
 }

@@ -3,7 +3,7 @@ import { useQuery } from "@tanstack/react-query";
 import { useEffect, useMemo, useState } from "react";
 import { useSearchParams } from "react-router-dom";
 import { noticedSentence } from "../../shared/findings/sentences";
-import { formatDay, formatShortDate, formatTime, formatWeekday } from "../../shared/format/date";
+import { formatDay, formatDayMonth, formatTime, formatWeekday } from "../../shared/format/date";
 import { ruleSetVersion } from "../../shared/rule-sets";
 import type { SessionUser } from "../../shared/schemas/session";
 import type { CrewProgress, WaitingView } from "../../shared/schemas/waiting";
@@ -61,7 +61,7 @@ export function Component() {
 
   return (
     <>
-      <PageBody margin={data && <WaitingMargin data={data} zoneOf={zoneOf} />} marginWidthPx={220}>
+      <PageBody margin={data && <WaitingMargin data={data} zoneOf={zoneOf} ownName={user.name} />} marginWidthPx={220}>
         <PageHead
           title={i18n.t("Waiting for you")}
           lead={
@@ -172,7 +172,7 @@ function NextThing({ crews }: { crews: readonly CrewProgress[] }) {
 
 const CHECKS_SHOWN = 6;
 
-function WaitingMargin({ data, zoneOf }: { data: WaitingView; zoneOf: (siteId: string | undefined) => string }) {
+function WaitingMargin({ data, zoneOf, ownName }: { data: WaitingView; zoneOf: (siteId: string | undefined) => string; ownName: string }) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const siteOfWorker = new Map([...data.findings, ...data.toBeChecked].flatMap(({ worker, siteId }) => (worker ? [[worker.id, siteId] as const] : [])));
@@ -181,7 +181,7 @@ function WaitingMargin({ data, zoneOf }: { data: WaitingView; zoneOf: (siteId: s
   return (
     <>
       {data.outgoing.map((entry) => (
-        <OutgoingNotice key={entry.entryId} entry={entry} timeZone={zoneOfNotice(entry.notices.flatMap(({ workers }) => workers))} />
+        <OutgoingNotice key={entry.entryId} entry={entry} ownName={ownName} timeZone={zoneOfNotice(entry.notices.flatMap(({ workers }) => workers))} />
       ))}
       {data.troubled.length > 0 && <TroubledNotices notices={data.troubled} timeZoneOf={({ workers }) => zoneOfNotice(workers)} />}
       {data.toBeChecked.length > 0 && (
@@ -215,10 +215,10 @@ function WaitingMargin({ data, zoneOf }: { data: WaitingView; zoneOf: (siteId: s
               ),
               value:
                 dueOn < data.today
-                  ? i18n.t("since {date}", { date: formatShortDate(dueOn, locale) })
+                  ? i18n.t("since {date}", { date: formatDayMonth(dueOn, locale) })
                   : dueOn <= addDays(data.today, 6)
                     ? formatWeekday(dueOn, locale)
-                    : formatShortDate(dueOn, locale),
+                    : formatDayMonth(dueOn, locale),
             }))}
           />
         </MarginNote>

@@ -92,6 +92,20 @@ const matrix: Record<string, string> = {
   "GET /workers/:id/assignments": "officer supervisor worker auditor",
   "POST /workers/:id/assignments": "officer",
   "POST /workers/:id/sign-in-codes": "officer administrator",
+  "GET /exports/gap-names": "officer auditor",
+  "GET /exports/gaps": "officer auditor",
+  "GET /exports/year-dictionary.csv": "officer auditor",
+  "GET /exports/year.csv": "officer auditor",
+  "POST /imports/past-results": "officer",
+  "GET /imports/past-results/template.csv": "officer",
+  "POST /imports/readings": "officer",
+  "GET /imports/readings/template.csv": "officer",
+  "POST /imports/shifts": "officer",
+  "GET /imports/shifts/template.csv": "officer",
+  "POST /protectors/:id/revisions/preview": "officer",
+  "GET /recompute-progress": "officer",
+  "POST /sites/:id/settings/preview": "officer",
+  "POST /tasks/:id/levels/preview": "officer",
 };
 
 testApp();

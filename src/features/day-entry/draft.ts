@@ -105,8 +105,10 @@ function putLastWorn(
   const worn = taskIds.filter(needsProtector);
   const shares = worn.map((taskId) => lastWorn[taskId] ?? null);
   const [first = null] = shares;
-  if (first !== null && shares.every((share) => share === first)) put(cells, "worn", first, "filled");
-  else worn.forEach((taskId, index) => put(cells, wornCell(taskId), shares[index] ?? null, "filled"));
+  if (first !== null && shares.every((share) => share === first))
+    put(cells, "worn", first, "filled");
+  else
+    worn.forEach((taskId, index) => put(cells, wornCell(taskId), shares[index] ?? null, "filled"));
 }
 
 function savedCells(saved: SavedShift): Cells {
@@ -133,7 +135,8 @@ export function openRow(row: GridRow, view: DayGridView): RowDraft {
   else {
     put(cells, "start", view.crew.usualStart, "filled");
     put(cells, "length", view.crew.usualLengthMin, "filled");
-    for (const { taskId, durationMin } of nominal) put(cells, taskCell(taskId), durationMin, "filled");
+    for (const { taskId, durationMin } of nominal)
+      put(cells, taskCell(taskId), durationMin, "filled");
     const isLoud = (taskId: string) => {
       const task = view.tasks.find(({ id }) => id === taskId);
       return (

@@ -7,15 +7,14 @@ import type {
   RuleSetVersion,
   Unaccounted,
 } from "../../../shared/acoustics/types";
-import { assignmentFor, buildDayInput, type EnteredShift } from "../../../shared/day/build-day-input";
+import {
+  assignmentFor,
+  buildDayInput,
+  type EnteredShift,
+} from "../../../shared/day/build-day-input";
 import { type DaySummary, summarizeDay } from "../../../shared/day/summarize-day";
 import { ruleSetInForce, ruleSetVersion } from "../../../shared/rule-sets/index";
-import type {
-  DayGridView,
-  GridRow,
-  GridTask,
-  ShiftTaskInput,
-} from "../../../shared/schemas/shift";
+import type { DayGridView, GridRow, GridTask, ShiftTaskInput } from "../../../shared/schemas/shift";
 import { atLocalTime } from "../../../shared/time/zone";
 import { type CellFault, numberIn, readingIn, unaccountedIn } from "./cells";
 import { type CellId, taskCell, wornCell } from "./columns";
@@ -33,7 +32,10 @@ export type RowProblem =
       /** The longest this worker stayed in the suspect task, where it was shorter. */
       readonly longest: { readonly taskName: string; readonly longestMin: number } | null;
     }
-  | { readonly kind: "start-missing" | "length-missing" | "not-whole-minutes"; readonly cell: CellId }
+  | {
+      readonly kind: "start-missing" | "length-missing" | "not-whole-minutes";
+      readonly cell: CellId;
+    }
   | { readonly kind: "length-out-of-range"; readonly cell: CellId }
   | { readonly kind: "time-skipped" | "time-twice"; readonly cell: CellId; readonly time: string }
   | { readonly kind: "whole-day"; readonly cell: CellId }
@@ -170,7 +172,12 @@ export function createRowEvaluator(view: DayGridView): EvaluateRow {
     return {
       row,
       ...times,
-      values: { localStart: times.start, lengthMin: times.lengthMin, tasks: times.tasks, unaccounted },
+      values: {
+        localStart: times.start,
+        lengthMin: times.lengthMin,
+        tasks: times.tasks,
+        unaccounted,
+      },
       problems: refusals(row),
       questions: questionsOf(row, gridRow, times, evaluation, tasks),
       input,
@@ -249,7 +256,11 @@ function nothing(
   };
 }
 
-const shiftSaved = (shiftId: string): RowProblem => ({ kind: "shift-saved", cell: "start", shiftId });
+const shiftSaved = (shiftId: string): RowProblem => ({
+  kind: "shift-saved",
+  cell: "start",
+  shiftId,
+});
 
 const CELL_OF_FIELD: Readonly<Record<string, CellId>> = {
   lengthMin: "length",
@@ -273,17 +284,22 @@ function problemsOf(
 ): RowProblem[] {
   const { cells } = row;
   const problems: RowProblem[] = [];
-  for (const [id, cell] of Object.entries(cells) as [CellId, NonNullable<(typeof cells)[CellId]>][]) {
+  for (const [id, cell] of Object.entries(cells) as [
+    CellId,
+    NonNullable<(typeof cells)[CellId]>,
+  ][]) {
     if (cell.fault) problems.push({ kind: "fault", cell: id, fault: cell.fault });
   }
   const { start, lengthMin, sumMin } = times;
-  if (start === null && !cells.start?.fault) problems.push({ kind: "start-missing", cell: "start" });
+  if (start === null && !cells.start?.fault)
+    problems.push({ kind: "start-missing", cell: "start" });
   if (lengthMin === null && !cells.length?.fault) {
     problems.push({ kind: "length-missing", cell: "length" });
   }
   if (start !== null) {
     const local = atLocalTime(view.date, start, view.crew.timeZone);
-    if (local.kind === "skipped") problems.push({ kind: "time-skipped", cell: "start", time: start });
+    if (local.kind === "skipped")
+      problems.push({ kind: "time-skipped", cell: "start", time: start });
     if (local.kind === "twice" && row.whichHour === null) {
       problems.push({ kind: "time-twice", cell: "start", time: start });
     }
@@ -392,7 +408,14 @@ function readingsOf(
   instruments: ReadonlyMap<string, DayGridView["instruments"][number]>,
 ): ReadingInput[] {
   const stored = gridRow.readings.map(
-    ({ readingId, runId, instrumentClass, instrumentId: _, runRevision: __, ...facts }): ReadingInput => ({
+    ({
+      readingId,
+      runId,
+      instrumentClass,
+      instrumentId: _,
+      runRevision: __,
+      ...facts
+    }): ReadingInput => ({
       ...facts,
       id: readingId,
       runId,
@@ -436,7 +459,10 @@ function protectorsOf(
   wearFromDb: number,
 ): RowProtector[] {
   if (gridRow.assignments.length === 0) return [];
-  const found = new Map<string, { name: string; taskNames: string[]; minutes: number; isEverywhere: boolean }>();
+  const found = new Map<
+    string,
+    { name: string; taskNames: string[]; minutes: number; isEverywhere: boolean }
+  >();
   for (const { taskId, durationMin } of entered) {
     const task = tasks.get(taskId);
     const assignment = task && assignmentFor(task, gridRow.assignments);

@@ -64,4 +64,8 @@ export const isTyping = (event: {
   metaKey: boolean;
   altKey: boolean;
 }): boolean =>
-  [...event.key].length === 1 && event.key !== " " && !event.ctrlKey && !event.metaKey && !event.altKey;
+  [...event.key].length === 1 &&
+  event.key !== " " &&
+  !event.ctrlKey &&
+  !event.metaKey &&
+  !event.altKey;

@@ -75,9 +75,7 @@ export function copyRange(
         columns
           .slice(range.fromColumn, range.toColumn + 1)
           .map((column) =>
-            column.cell
-              ? editText(row.cells[column.cell], locale, words)
-              : workedOut(row, column),
+            column.cell ? editText(row.cells[column.cell], locale, words) : workedOut(row, column),
           ),
       ),
   );

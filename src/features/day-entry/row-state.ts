@@ -29,9 +29,5 @@ export const hasProblem = (found: RowEvaluation): boolean =>
   found.problems.length > 0 || found.questions.length > 0;
 
 /** Filled in from roster and nominal day, in order, and nobody has said anything about it yet. */
-export const isOnlyFilledIn = (
-  found: RowEvaluation,
-  row: RowDraft,
-  gridRow: GridRow,
-): boolean =>
+export const isOnlyFilledIn = (found: RowEvaluation, row: RowDraft, gridRow: GridRow): boolean =>
   !isSettled(row, gridRow) && !isSpoken(row, gridRow) && found.problems.length === 0;

@@ -150,9 +150,7 @@ export function viewAfter(
   for (const { index, workerId, shift, figures, readings } of reply.saved) {
     const kind = rows[index]?.kind;
     const change: Partial<GridRow> =
-      kind === "worked"
-        ? { saved: shift, figures, readings }
-        : { isAbsent: kind === "absent" };
+      kind === "worked" ? { saved: shift, figures, readings } : { isAbsent: kind === "absent" };
     saved.set(workerId, { ...saved.get(workerId), ...change });
   }
   for (const { workerId, current } of reply.conflicts) {
@@ -172,7 +170,7 @@ export function viewAfter(
 export function draftAfter(
   draft: DayDraft,
   after: DayGridView,
-  reply: DaySaveView,
+  reply: Pick<DaySaveView, "saved" | "refused" | "conflicts">,
   { rows, sent, unchanged }: Collected,
 ): DayDraft {
   const gridRows = new Map(after.rows.map((row) => [row.worker.id, row]));
@@ -181,7 +179,9 @@ export function draftAfter(
   rows.forEach(({ workerId }, index) => {
     if (storedIndexes.has(index)) settled.set(workerId, sent[index] as RowDraft);
   });
-  const refused = new Map(reply.refused.map(({ index, issues }) => [rows[index]?.workerId, issues]));
+  const refused = new Map(
+    reply.refused.map(({ index, issues }) => [rows[index]?.workerId, issues]),
+  );
   const conflicted = new Set(reply.conflicts.map(({ workerId }) => workerId));
   return {
     ...draft,

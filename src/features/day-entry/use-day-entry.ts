@@ -6,13 +6,18 @@ import {
   type DayDraft,
   type DraftAction,
   isBehind,
-  isSpoken,
+  isSettled,
   openDay,
   rebaseDraft,
   reduceDraft,
 } from "./draft";
 import { type DraftStore, type PendingSave, restoreDraft } from "./draft-store";
-import { createRowEvaluator, type EvaluateRow, type RowEvaluation, usualSetup } from "./evaluate-rows";
+import {
+  createRowEvaluator,
+  type EvaluateRow,
+  type RowEvaluation,
+  usualSetup,
+} from "./evaluate-rows";
 import { saveDay } from "./queries";
 import { type Collected, collectRows, countRows, draftAfter, viewAfter } from "./save";
 
@@ -90,15 +95,24 @@ export function useDayEntry(
   const evaluate = useMemo(() => createRowEvaluator(view), [view]);
   const found = useMemo(() => draft.rows.map(evaluate), [draft.rows, evaluate]);
 
+  const lastTyped = useRef("");
   const dispatch = useCallback((action: DraftAction) => {
-    setDraft((known) => {
-      const next = reduceDraft(known, withSetup(action, known, latest.current.view));
-      if (next !== known) past.current = [...past.current.slice(-STEPS_BACK), known];
-      return next;
-    });
+    const { draft: known, view: now } = latest.current;
+    const next = reduceDraft(known, withSetup(action, known, now));
+    if (next === known) return;
+    const [only] = action.type === "set-cells" && action.changes.length === 1 ? action.changes : [];
+    const typed = only ? `${only.workerId} ${only.cell}` : "";
+    // Letter by letter in one cell is one step back.
+    if (typed === "" || typed !== lastTyped.current) {
+      past.current = [...past.current.slice(-STEPS_BACK), known];
+    }
+    lastTyped.current = typed;
+    latest.current = { draft: next, view: now };
+    setDraft(next);
   }, []);
   const undo = useCallback(() => {
     const before = past.current.pop();
+    lastTyped.current = "";
     if (before) setDraft(before);
   }, []);
 
@@ -110,13 +124,15 @@ export function useDayEntry(
   });
 
   async function save(reason: string | null) {
+    // What was chosen a moment ago is not drawn yet, and belongs to it all the same.
+    const { draft, view } = latest.current;
     const collected = collectRows(draft, view, evaluate, reason);
     if (collected.corrections.length > 0 && reason === null) return "reason" as const;
     if (collected.rows.length === 0) {
       if (collected.unchanged.length === 0) return "nothing" as const;
-      const empty = { saved: [], refused: [], conflicts: [], entryId: "", notices: noNotices };
-      setDraft(draftAfter(draft, view, empty, collected));
-      return outcome(0, draft, view);
+      const next = draftAfter(draft, view, { saved: [], refused: [], conflicts: [] }, collected);
+      setDraft(next);
+      return outcome(0, next, view);
     }
     const body = JSON.stringify(collected.rows);
     // The same rows again are the same change, whatever became of the first request.
@@ -172,8 +188,6 @@ export function useDayEntry(
   };
 }
 
-const noNotices = { entryId: "", notBefore: null, state: "none", people: 0, notices: [] } as const;
-
 /** A reading typed into a cell is taken under the settings of the last one, until somebody says otherwise. */
 function withSetup(action: DraftAction, draft: DayDraft, view: DayGridView): DraftAction {
   if (action.type !== "set-cells" || !action.changes.some(({ cell }) => cell === "reading")) {
@@ -191,18 +205,13 @@ function withSetup(action: DraftAction, draft: DayDraft, view: DayGridView): Dra
 
 function outcome(saved: number, draft: DayDraft, view: DayGridView): SaveOutcome {
   const gridRows = new Map<string, GridRow>(view.rows.map((row) => [row.worker.id, row]));
-  const isWaiting = (workerId: string, at: number) => {
-    const row = draft.rows[at];
-    const gridRow = gridRows.get(workerId);
-    return row !== undefined && gridRow !== undefined && stateOf(row, gridRow) !== "saved";
-  };
-  const first = draft.rows.findIndex(({ workerId }, at) => isWaiting(workerId, at));
+  const first = draft.rows.findIndex((row) => {
+    const gridRow = gridRows.get(row.workerId);
+    return gridRow !== undefined && !isSettled(row, gridRow);
+  });
   return {
     saved,
     waiting: countRows(draft, view).waiting,
     firstWaiting: first === -1 ? null : first,
   };
 }
-
-const stateOf = (row: DayDraft["rows"][number], gridRow: GridRow) =>
-  isSpoken(row, gridRow) || (gridRow.saved === null && !gridRow.isAbsent) ? "waits" : "saved";

@@ -1,5 +1,10 @@
 import type { I18n } from "@lingui/core";
-import type { MeterSettings, Reason, RuleSetVersion, Unaccounted } from "../../../shared/acoustics/types";
+import type {
+  MeterSettings,
+  Reason,
+  RuleSetVersion,
+  Unaccounted,
+} from "../../../shared/acoustics/types";
 import type { DaySummary } from "../../../shared/day/summarize-day";
 import { formatDate } from "../../../shared/format/date";
 import { formatDuration, formatMinutes } from "../../../shared/format/duration";
@@ -267,8 +272,12 @@ export function outsideWords(
         (quantity === "lex-8h" || quantity === "dose" || quantity === "table-dose"),
     )
     .flatMap((criterion) => {
-      const result = summary.governingCriteria.find(({ criterionId }) => criterionId === criterion.id);
-      return result ? [{ valueDb: criterion.levelDb ?? criterion.value, verdict: result.verdict }] : [];
+      const result = summary.governingCriteria.find(
+        ({ criterionId }) => criterionId === criterion.id,
+      );
+      return result
+        ? [{ valueDb: criterion.levelDb ?? criterion.value, verdict: result.verdict }]
+        : [];
     })
     .sort((a, b) => a.valueDb - b.valueDb);
   const level = (valueDb: number) => formatLimit(valueDb, locale);
@@ -278,7 +287,10 @@ export function outsideWords(
       verdict !== "over" && verdict !== "under" && valueDb > (over?.valueDb ?? 0),
   );
   if (over && open) {
-    return i18n.t("Over {over}, {open} open", { over: level(over.valueDb), open: level(open.valueDb) });
+    return i18n.t("Over {over}, {open} open", {
+      over: level(over.valueDb),
+      open: level(open.valueDb),
+    });
   }
   if (over) return i18n.t("Over {level}", { level: level(over.valueDb) });
   const [lowest] = judged;

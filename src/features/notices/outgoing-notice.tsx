@@ -14,12 +14,12 @@ import { problemText } from "../../lib/problem-text";
 import { noticeTextQuery, useHandleNotices } from "./queries";
 
 /** Before anybody is told: who, when and about whom, and time to look. */
-export function OutgoingNotice({ entry, timeZone }: { entry: EntryNotices; timeZone: string }) {
+export function OutgoingNotice({ entry, timeZone, ownName }: { entry: EntryNotices; timeZone: string; ownName: string }) {
   const { i18n } = useLingui();
   const [isLooking, setIsLooking] = useState(false);
   const handle = useHandleNotices(entry.entryId);
   const isHeld = entry.state === "held";
-  const recipients = [...new Set(entry.notices.map(({ recipientName }) => recipientName))];
+  const recipients = [...new Set(entry.notices.map(({ recipientName }) => recipientName))].map((name) => (name === ownName ? i18n.t("you") : name));
   const workers = [...new Map(entry.notices.flatMap((notice) => notice.workers).map((worker) => [worker.id, worker])).values()];
   const kinds = [...new Set(workers.flatMap((worker) => worker.kinds))] as FindingKind[];
   return (

@@ -43,7 +43,8 @@ export function ActivePart({ active }: { active: NonNullable<ProtectorFacts["act
     {
       key: "bandwidth",
       label: i18n.t("Works up to"),
-      value: active.bandwidthHz === null ? null : `${formatNumber(active.bandwidthHz, 0, locale)} Hz`,
+      value:
+        active.bandwidthHz === null ? null : `${formatNumber(active.bandwidthHz, 0, locale)} Hz`,
     },
     {
       key: "saturates",
@@ -51,7 +52,9 @@ export function ActivePart({ active }: { active: NonNullable<ProtectorFacts["act
       value:
         active.saturatesAboveDb === null
           ? null
-          : i18n.t("{level} dB(A) outside", { level: formatLevel(active.saturatesAboveDb, locale) }),
+          : i18n.t("{level} dB(A) outside", {
+              level: formatLevel(active.saturatesAboveDb, locale),
+            }),
     },
     {
       key: "battery",
@@ -62,21 +65,29 @@ export function ActivePart({ active }: { active: NonNullable<ProtectorFacts["act
   return (
     <>
       <p className="review-lead">
-        {i18n.t("Stored apart from cup or plug. A limit is judged with the active part off, unless the site says otherwise and a passed check of the worker is on record.")}
+        {i18n.t(
+          "Stored apart from cup or plug. A limit is judged with the active part off, unless the site says otherwise and a passed check of the worker is on record.",
+        )}
       </p>
       {credited && (
         <div className="picture-and-table">
           <div>
             <BandPicture
-              title={i18n.t("Active attenuation by octave band, dB, 0 in ink; above it the part adds noise. The table beside it says the same")}
+              title={i18n.t(
+                "Active attenuation by octave band, dB, 0 in ink; above it the part adds noise. The table beside it says the same",
+              )}
               lowDb={-10}
               highDb={30}
               isDownward
               heightPx={180}
-              series={[{ key: "active", label: i18n.t("Active part"), valuesDb: credited, kind: "active" }]}
+              series={[
+                { key: "active", label: i18n.t("Active part"), valuesDb: credited, kind: "active" },
+              ]}
             />
             <p className="picture-legend">
-              {i18n.t("Ring: what the active part takes away further, dB; above the ink line it adds noise.")}
+              {i18n.t(
+                "Ring: what the active part takes away further, dB; above the ink line it adds noise.",
+              )}
             </p>
           </div>
           <DataTable
@@ -88,9 +99,28 @@ export function ActivePart({ active }: { active: NonNullable<ProtectorFacts["act
             }))}
             rowKey={({ hz }) => String(hz)}
             columns={[
-              { id: "band", head: i18n.t("Band"), unit: "Hz", kind: "figure", isRowHead: true, cell: ({ hz }) => hz },
-              { id: "stated", head: i18n.t("Stated"), unit: "dB", kind: "figure", cell: ({ statedDb }) => formatLevel(statedDb, locale) },
-              { id: "credited", head: i18n.t("Credited"), unit: "dB", kind: "figure", cell: ({ creditedDb }) => formatLevel(creditedDb, locale) },
+              {
+                id: "band",
+                head: i18n.t("Band"),
+                unit: "Hz",
+                kind: "figure",
+                isRowHead: true,
+                cell: ({ hz }) => hz,
+              },
+              {
+                id: "stated",
+                head: i18n.t("Stated"),
+                unit: "dB",
+                kind: "figure",
+                cell: ({ statedDb }) => formatLevel(statedDb, locale),
+              },
+              {
+                id: "credited",
+                head: i18n.t("Credited"),
+                unit: "dB",
+                kind: "figure",
+                cell: ({ creditedDb }) => formatLevel(creditedDb, locale),
+              },
             ]}
           />
         </div>

@@ -32,7 +32,9 @@ export function AttenuationByBand({ bands }: { bands: ProtectorFacts["bands"] })
     <div className="picture-and-table">
       <div>
         <BandPicture
-          title={i18n.t("Attenuation by octave band, dB, 0 at the top; the table beside it says the same")}
+          title={i18n.t(
+            "Attenuation by octave band, dB, 0 at the top; the table beside it says the same",
+          )}
           lowDb={0}
           highDb={50}
           isDownward
@@ -41,7 +43,9 @@ export function AttenuationByBand({ bands }: { bands: ProtectorFacts["bands"] })
           ]}
         />
         <p className="picture-legend">
-          {i18n.t("Tick: mean of the test subjects, dB. Whisker: one standard deviation either way. Hz beneath.")}
+          {i18n.t(
+            "Tick: mean of the test subjects, dB. Whisker: one standard deviation either way. Hz beneath.",
+          )}
         </p>
       </div>
       <DataTable
@@ -49,9 +53,28 @@ export function AttenuationByBand({ bands }: { bands: ProtectorFacts["bands"] })
         rows={rows}
         rowKey={({ hz }) => String(hz)}
         columns={[
-          { id: "band", head: i18n.t("Band"), unit: "Hz", kind: "figure", isRowHead: true, cell: ({ hz }) => hz },
-          { id: "mean", head: i18n.t("Mean"), unit: "dB", kind: "figure", cell: ({ meanDb }) => formatLevel(meanDb, locale) },
-          { id: "sd", head: i18n.t("Deviation"), unit: "dB", kind: "figure", cell: ({ sdDb }) => formatLevel(sdDb, locale) },
+          {
+            id: "band",
+            head: i18n.t("Band"),
+            unit: "Hz",
+            kind: "figure",
+            isRowHead: true,
+            cell: ({ hz }) => hz,
+          },
+          {
+            id: "mean",
+            head: i18n.t("Mean"),
+            unit: "dB",
+            kind: "figure",
+            cell: ({ meanDb }) => formatLevel(meanDb, locale),
+          },
+          {
+            id: "sd",
+            head: i18n.t("Deviation"),
+            unit: "dB",
+            kind: "figure",
+            cell: ({ sdDb }) => formatLevel(sdDb, locale),
+          },
           {
             id: "assumed",
             head: i18n.t("Mean less one"),

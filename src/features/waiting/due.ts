@@ -20,7 +20,12 @@ export interface WaitingItem {
   readonly group: DueGroup;
   readonly due: Due;
   readonly crew: CrewProgress | null;
+  /** The same worker's over the limit, where this finding is the reason for it: one thing to do, one row. */
+  readonly also: FindingRow | null;
 }
+
+/** What explains that the limit is passed at the ear. */
+const EXPLAINS_OVER: ReadonlySet<FindingKind> = new Set(["no-protector", "protects-too-little", "dual-protection"]);
 
 const minutesOf = (time: string): number => Number(time.slice(0, 2)) * 60 + Number(time.slice(3, 5));
 const timeOf = (min: number): string =>
@@ -42,7 +47,7 @@ export const crewEnd = ({ start, lengthMin }: Pick<CrewProgress, "start" | "leng
  * A finding by when it has to be done. A date that an officer has set counts; else what keeps a worker out of noise comes
  * before the next time in noise, what is due today before the shift ends.
  */
-export function placeFinding(finding: FindingRow, crew: CrewProgress | null, today: string, nowTime: string): Omit<WaitingItem, "finding" | "crew"> {
+export function placeFinding(finding: FindingRow, crew: CrewProgress | null, today: string, nowTime: string): Pick<WaitingItem, "group" | "due"> {
   const { dueOn, kind, state } = finding;
   const isPlanned = state === "in-hand" && dueOn !== null && dueOn > today;
   if (BEFORE_NOISE.has(kind) && !isPlanned) {
@@ -79,11 +84,19 @@ export function placeFindings(
   today: string,
   nowTimeAt: (siteId: string) => string,
 ): WaitingItem[] {
-  const items = findings.map((finding) => {
+  const overOf = new Map(
+    findings.flatMap((finding) => (finding.kind === "over-limit-at-ear" && finding.worker ? [[finding.worker.id, finding] as const] : [])),
+  );
+  const folded = new Set<string>();
+  const items = findings.map((finding): WaitingItem => {
     const crew = crews.find(({ name, siteId }) => name === finding.crewName && siteId === finding.siteId) ?? null;
-    return { finding, crew, ...placeFinding(finding, crew, today, nowTimeAt(finding.siteId)) };
+    const placed = placeFinding(finding, crew, today, nowTimeAt(finding.siteId));
+    const over = finding.worker && EXPLAINS_OVER.has(finding.kind) ? overOf.get(finding.worker.id) : undefined;
+    const isSame = over && !folded.has(over.id) && placeFinding(over, crew, today, nowTimeAt(over.siteId)).group === placed.group;
+    if (isSame) folded.add(over.id);
+    return { finding, crew, also: isSame ? over : null, ...placed };
   });
-  return items.toSorted(
+  return items.filter(({ finding }) => !folded.has(finding.id)).toSorted(
     (a, b) =>
       DUE_GROUPS.indexOf(a.group) - DUE_GROUPS.indexOf(b.group) ||
       (a.group === "before-noise" ? 0 : (a.finding.dueOn ?? "9999").localeCompare(b.finding.dueOn ?? "9999")) ||

@@ -3,7 +3,7 @@ import { useLingui } from "@lingui/react";
 import { type ReactNode, useMemo } from "react";
 import { noticedSentence, orderSentence, remedyFigure, remedyOf } from "../../../shared/findings/sentences";
 import { findingStateWord, findingWord } from "../../../shared/findings/words";
-import { formatShortDate, formatWeekday } from "../../../shared/format/date";
+import { formatDayMonth, formatWeekday } from "../../../shared/format/date";
 import type { FindingRow } from "../../../shared/schemas/finding";
 import { addDays } from "../../../shared/time/zone";
 import { type DataColumn, DataTable } from "../../components/data-table";
@@ -59,7 +59,7 @@ function DueCell({ due, today }: { due: Due; today: string }) {
   const isNear = due.date >= addDays(today, -6) && due.date <= addDays(today, 6);
   return (
     <span className="two-lines">
-      <span className="mono">{isNear ? formatWeekday(due.date, locale) : formatShortDate(due.date, locale)}</span>
+      <span className="mono">{isNear ? formatWeekday(due.date, locale) : formatDayMonth(due.date, locale)}</span>
       {due.isLate && <b className="beneath-ink">{i18n.t("late")}</b>}
     </span>
   );
@@ -90,12 +90,17 @@ export function WaitingTable({
       id: "wrong",
       head: <TwoLineHead first={i18n.t("What is wrong,")} second={i18n.t("and its state")} />,
       isRowHead: true,
-      cell: ({ finding }) => (
+      cell: ({ finding, also }) => (
         <span className="two-lines">
           <TextLink className="is-quiet" to={paths.finding(finding.id)}>
             {findingWord(i18n, finding.kind)}
           </TextLink>
           <span className="beneath">{findingStateWord(i18n, finding.state)}</span>
+          {also && (
+            <TextLink className="is-quiet beneath" to={paths.finding(also.id)}>
+              {i18n.t("and {what}", { what: findingWord(i18n, also.kind).toLocaleLowerCase(locale) })}
+            </TextLink>
+          )}
         </span>
       ),
     },

@@ -1,0 +1,91 @@
+/**
+ * Takes the pictures of README from a running demo: `npm start` in one terminal, `npm run pictures` in another.
+ * PUBLIC_URL says where it runs unless that is its usual address.
+ */
+import { mkdirSync } from "node:fs";
+import { signInAs, startBrowser } from "../tests/setup/browser";
+
+interface Person {
+  name: string;
+  roles: string[];
+  granted?: boolean;
+}
+
+const url = process.env.PUBLIC_URL ?? "http://127.0.0.1:4600";
+const issuer = process.env.OIDC_ISSUER ?? "http://localhost:4601";
+const folder = "docs/pictures";
+mkdirSync(folder, { recursive: true });
+
+const people = (await (await fetch(`${issuer}/demo-people`)).json()) as Person[];
+const somebody = (role: string) => {
+  const found =
+    people.find(({ roles }) => roles.length === 1 && roles[0] === role) ??
+    people.find(({ roles }) => roles.includes(role));
+  if (!found) throw new Error(`the demo has no ${role}`);
+  return found.name;
+};
+
+interface Shot {
+  file: string;
+  role: string;
+  path: string | ((visit: (path: string) => Promise<unknown>) => Promise<string>);
+  width: number;
+  height: number;
+  colorScheme?: "dark";
+}
+
+/** The crew whose day is furthest entered, and the worker first in the list: whatever the demo holds today. */
+const dayPath: Shot["path"] = async (ask) => {
+  const waiting = (await ask("/waiting")) as {
+    crews: { id: string; date: string; saved: number }[];
+  };
+  const [crew] = waiting.crews.toSorted((a, b) => b.saved - a.saved);
+  return `/days/${crew?.id}/${crew?.date}`;
+};
+const resultPath: Shot["path"] = async (ask) => {
+  const { findings } = (await ask("/waiting")) as {
+    findings: { worker: { id: string } | null; figures: { date: string } | null }[];
+  };
+  const found = findings.find(({ worker, figures }) => worker && figures);
+  return `/workers/${found?.worker?.id}/days/${found?.figures?.date}`;
+};
+
+const shots: Shot[] = [
+  { file: "waiting", role: "officer", path: "/waiting", width: 1440, height: 990 },
+  {
+    file: "waiting-dark",
+    role: "officer",
+    path: "/waiting",
+    width: 1440,
+    height: 990,
+    colorScheme: "dark",
+  },
+  { file: "day-entry", role: "officer", path: dayPath, width: 1600, height: 1000 },
+  { file: "working", role: "officer", path: resultPath, width: 1280, height: 1770 },
+  { file: "crew-sheet", role: "supervisor", path: "/crew-sheet", width: 400, height: 860 },
+  { file: "my-page", role: "worker", path: "/me", width: 390, height: 844 },
+  { file: "year-file", role: "auditor", path: "/year-file", width: 1280, height: 960 },
+  { file: "people", role: "administrator", path: "/people", width: 1280, height: 800 },
+];
+
+const browser = await startBrowser();
+try {
+  for (const { file, role, path, width, height, colorScheme } of shots) {
+    const { page, problems } = await browser.openPage({
+      viewport: { width, height },
+      colorScheme,
+      deviceScaleFactor: width < 500 ? 2 : 1,
+    });
+    await signInAs(page, url, somebody(role));
+    const ask = (address: string) =>
+      page.evaluate(async (to) => (await fetch(`/api${to}`)).json(), address);
+    await page.goto(`${url}${typeof path === "string" ? path : await path(ask)}`);
+    await page.waitForLoadState("networkidle");
+    await page.screenshot({ path: `${folder}/${file}.png` });
+    await page.context().close();
+    if (problems.length > 0) throw new Error(`${file}: ${problems.join("\n")}`);
+    console.log(`${folder}/${file}.png`);
+  }
+} finally {
+  await browser.close();
+}

@@ -1,0 +1,66 @@
+import { addDays, atLocalTime, localDate } from "../../shared/time/zone";
+import type { DemoCrew } from "../demo/programme";
+import { chance } from "./chance";
+
+const weekday = (date: string) => new Date(`${date}T00:00:00Z`).getUTCDay();
+const daysBetween = (from: string, to: string) => Math.round((Date.parse(to) - Date.parse(from)) / 86_400_000);
+
+/** The days of a site, from the first of the demo to the one on its clock when the demo is filled. */
+export class SiteCalendar {
+  readonly today: string;
+
+  constructor(readonly timeZone: string, now: Date, readonly spanDays: number) {
+    this.today = localDate(now, timeZone);
+  }
+
+  get first(): string {
+    return addDays(this.today, -this.spanDays);
+  }
+
+  daysAgo(count: number): string {
+    return addDays(this.today, -count);
+  }
+
+  /** Whether a crew works on a date. Today and yesterday always: a weekend's demo has something to enter too. */
+  works({ pattern }: Pick<DemoCrew, "pattern">, date: string): boolean {
+    const ago = daysBetween(date, this.today);
+    if (pattern === "four-on-four-off") return ago % 8 < 4;
+    if (ago <= 1) return true;
+    return weekday(date) !== 0 && weekday(date) !== 6 && !isShutDown(date);
+  }
+
+  /** The working day of a crew that lies so many working days back; 0 is today. Null where the demo begins later. */
+  workdayAgo(crew: Pick<DemoCrew, "pattern">, count: number): string | null {
+    let left = count;
+    for (let date = this.today; date >= this.first; date = addDays(date, -1)) {
+      if (!this.works(crew, date)) continue;
+      if (left === 0) return date;
+      left -= 1;
+    }
+    return null;
+  }
+
+  /** The instant of a time on the site's clock; a time that the clock skips is taken an hour later. */
+  instant(date: string, time: string): Date {
+    const local = atLocalTime(date, time, this.timeZone);
+    if (local.kind === "one") return local.instant;
+    if (local.kind === "twice") return local.first;
+    const [hour = "0", minute = "00"] = time.split(":");
+    return this.instant(date, `${String(Number(hour) + 1).padStart(2, "0")}:${minute}`);
+  }
+}
+
+/** Between Christmas and New Year nothing runs. */
+function isShutDown(date: string): boolean {
+  const day = date.slice(5);
+  return day >= "12-24" || day === "01-01";
+}
+
+/** Leave comes in weeks, sickness in days. In the last days only the story decides who is there. */
+export function isAway(number: string, date: string, ago: number): boolean {
+  if (ago < 9) return false;
+  const week = Math.floor(Date.parse(date) / (7 * 86_400_000));
+  return chance(number, "leave", week) < 0.08 || chance(number, "ill", date) < 0.015;
+}
+
+export { daysBetween };

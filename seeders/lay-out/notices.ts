@@ -1,0 +1,87 @@
+import { randomUUID } from "node:crypto";
+import type { OpenedFinding } from "../../server/commands/update-findings";
+import { noticeMail } from "../../server/jobs/send-notice";
+import { execute, rows } from "../../server/lib/db";
+import { groupBy } from "../../server/lib/group-by";
+import { NOTIFIED_KINDS } from "../../shared/findings/notified";
+import { SITES, type SiteKey } from "../demo/programme";
+import type { Demo } from "./programme";
+import { known } from "./programme";
+
+const MINUTE_MS = 60_000;
+
+/** One notice that never arrived, and one that left two days late; both by whom and what they were about. */
+const TROUBLED = {
+  failed: { sub: "s.okonedo", kind: "peak-or-ceiling", error: "550 5.1.1 no mailbox of that name" },
+  late: { sub: "p.lanyon", kind: "over-limit-at-ear", byMin: 2 * 24 * 60 },
+} as const;
+
+/**
+ * What people were told in the past. The application's own command looks no further back than a month, and leaves
+ * sending to its queue; this lays down the same rows as they stand once they are sent.
+ */
+export async function tellInThePast(demo: Demo, opened: readonly OpenedFinding[], at: Date, publicUrl: string): Promise<void> {
+  const news = opened.filter(({ kind }) => NOTIFIED_KINDS.has(kind));
+  for (const [key, ofEntry] of groupBy(news, ({ siteId, date }) => `${siteId} ${date}`)) {
+    const [siteId, date] = key.split(" ") as [string, string];
+    const site = [...demo.sites].find(([, { id }]) => id === siteId)![0];
+    const entered = new Date(Math.min(demo.calendar(site).instant(date, "22:20").getTime(), at.getTime()));
+    await demo.at(entered, () => layDown(demo, site, siteId, ofEntry, entered));
+  }
+  await markSent(demo, at, publicUrl);
+}
+
+async function layDown(demo: Demo, site: SiteKey, siteId: string, news: readonly OpenedFinding[], entered: Date): Promise<void> {
+  const items = JSON.stringify(news.map(({ id, workerId, date, resultId }) => ({ findingId: id, workerId, date, resultId })));
+  const told = await rows<{ recipientId: string; audience: string; findingId: string; workerId: string; date: string; resultId: string }>(
+    `WITH item AS (SELECT * FROM jsonb_to_recordset(CAST(:items AS jsonb)) AS x("findingId" uuid, "workerId" uuid, date date, "resultId" uuid)),
+       told AS (
+         SELECT i."workerId", i.date, s.user_id AS id, 'supervisor' AS audience FROM item i
+           JOIN days d ON d.worker_id = i."workerId" AND d.date = i.date JOIN crew_supervisors s ON s.crew_id = d.crew_id AND s.valid @> i.date
+         UNION SELECT i."workerId", i.date, u.id, 'worker' FROM item i JOIN users u ON u.worker_id = i."workerId"
+         UNION SELECT i."workerId", i.date, CAST(:officerId AS uuid), 'officer' FROM item i)
+     SELECT t.id AS "recipientId", t.audience, i."findingId", i."workerId", i.date::text AS date, i."resultId"
+     FROM item i JOIN told t ON t."workerId" = i."workerId" AND t.date = i.date JOIN users u ON u.id = t.id AND u.email IS NOT NULL ORDER BY u.name, i."findingId"`,
+    { items, officerId: demo.officer(site).userId },
+  );
+  const entryId = randomUUID();
+  const notBefore = new Date(entered.getTime() + SITES[site].noticeDelayMin * MINUTE_MS).toISOString();
+  for (const [key, ofNotice] of groupBy(told, ({ recipientId, audience }) => `${recipientId} ${audience}`)) {
+    const [recipientId, audience] = key.split(" ");
+    const id = randomUUID();
+    await execute(
+      `INSERT INTO notices (id, organization_id, site_id, recipient_id, entry_id, audience, state, not_before, message_id) VALUES ($1, $2, $3, $4, $5, $6, 'waiting', $7, $8)`,
+      [id, demo.organizationId, siteId, recipientId, entryId, audience, notBefore, `<${id}@dinward>`],
+    );
+    await execute(
+      `INSERT INTO notice_items (organization_id, notice_id, finding_id, worker_id, date, result_id)
+       SELECT $1, $2, x."findingId", x."workerId", x.date, x."resultId" FROM jsonb_to_recordset($3::jsonb) AS x("findingId" uuid, "workerId" uuid, date date, "resultId" uuid)`,
+      [demo.organizationId, id, JSON.stringify(ofNotice)],
+    );
+  }
+}
+
+/** Notices whose time had come by then leave, in the words they had that day; their jobs are done. */
+export async function markSent(demo: Demo, by: Date, publicUrl: string): Promise<void> {
+  await demo.at(by, async () => {
+    const due = await rows<{ id: string; createdAt: Date; delayMin: number; recipientId: string; kinds: string[] }>(
+      `SELECT n.id, n.created_at AS "createdAt", s.notice_delay_min AS "delayMin", n.recipient_id AS "recipientId", array_agg(f.kind) AS kinds
+       FROM notices n JOIN sites s ON s.id = n.site_id JOIN notice_items i ON i.notice_id = n.id JOIN findings f ON f.id = i.finding_id
+       WHERE n.state = 'waiting' AND n.created_at + make_interval(mins => s.notice_delay_min) < CAST(:by AS timestamptz) GROUP BY n.id, s.id`,
+      { by: by.toISOString() },
+    );
+    for (const { id, createdAt, delayMin, recipientId, kinds } of due) {
+      const mail = await noticeMail(id, publicUrl);
+      const isFor = (trouble: { sub: string; kind: string }) => known(demo.actors, trouble.sub).userId === recipientId && kinds.includes(trouble.kind);
+      const isFailed = isFor(TROUBLED.failed);
+      const notBefore = new Date(createdAt.getTime() + delayMin * MINUTE_MS);
+      const attempted = new Date(notBefore.getTime() + (isFor(TROUBLED.late) ? TROUBLED.late.byMin * MINUTE_MS : 2_000));
+      await execute(
+        `UPDATE notices SET state = $2, not_before = $3, attempted_at = $4, sent_at = CASE WHEN $2 = 'sent' THEN $4::timestamptz END, tries = 1,
+           last_error = $5, subject = $6, body_text = $7, body_html = $8, revision = revision + 2 WHERE id = $1`,
+        [id, isFailed ? "failed" : "sent", notBefore.toISOString(), attempted.toISOString(), isFailed ? TROUBLED.failed.error : null, mail.subject, mail.text, mail.html],
+      );
+      await rows("SELECT graphile_worker.remove_job(:key) IS NULL AS gone", { key: `notice:${id}` });
+    }
+  });
+}

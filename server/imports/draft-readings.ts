@@ -1,0 +1,245 @@
+import type { ProblemIssue } from "../../shared/schemas/problem";
+import { type RunInput, RunInput as RunSchema } from "../../shared/schemas/run";
+import { localDate } from "../../shared/time/zone";
+import { employmentIssues, futureIssues, lockWorkers } from "../commands/check-shift";
+import { recordRun } from "../commands/record-run";
+import { rows } from "../lib/db";
+import { groupBy } from "../lib/group-by";
+import type { Actor } from "../lib/policy";
+import type { Site } from "../models/site";
+import { type ImportWorker, workersByNumber } from "../queries/import-lookups";
+import { Cells } from "./cells";
+import { IMPORT_COLUMNS } from "./columns";
+import { type ImportDraft, toProblemIssue } from "./import-draft";
+import type { CsvFile, CsvLine } from "./read-csv";
+
+const ofRun: Record<string, string> = {
+  durationMin: "duration_min",
+  checkBeforeDb: "check_before_db",
+  checkAfterDb: "check_after_db",
+  covers: "covers",
+  keptReason: "kept_reason",
+  unusual: "unusual",
+  date: "date",
+  instrumentId: "instrument_serial",
+  shiftId: "start",
+};
+const ofReading: Record<string, string> = {
+  criterionLevelDb: "criterion_level_db",
+  exchangeRateDb: "exchange_rate_db",
+  thresholdDb: "threshold_db",
+  weighting: "weighting",
+  response: "response",
+  dosePct: "dose_pct",
+  averageDb: "average_db",
+  lceqDb: "lceq_db",
+  lasMaxDb: "las_max_db",
+  peak: "peak_db",
+  levelDb: "peak_db",
+};
+
+function columnOf(path: ProblemIssue["path"]): string {
+  const last = String(path.at(-1));
+  return (path[0] === "readings" ? ofReading[last] : ofRun[String(path[0])]) ?? "employee_number";
+}
+
+const runKey = ({ cells }: CsvLine) =>
+  ["employee_number", "date", "instrument_serial", "start"]
+    .map((name) => cells.get(name) ?? "")
+    .join("\t");
+const runColumns = [
+  "duration_min",
+  "covers",
+  "check_before_db",
+  "check_after_db",
+  "kept_reason",
+  "unusual",
+];
+
+/** What a file of dosimeter readings would do: lines of one worker, date, instrument and shift are one run. */
+export async function draftReadings(actor: Actor, site: Site, file: CsvFile): Promise<ImportDraft> {
+  const cells = new Cells(file, IMPORT_COLUMNS.readings);
+  const groups = [...groupBy(file.lines, runKey).values()];
+  const workers = await workersByNumber(
+    site.id,
+    groups.map(([first]) => first!.cells.get("employee_number") ?? ""),
+  );
+  await lockWorkers([...workers.values()].map(({ id }) => id));
+  const found = await rows<{ id: string; serialNumber: string }>(
+    `SELECT id, serial_number AS "serialNumber" FROM instruments WHERE site_id = :siteId AND kind <> 'calibrator'`,
+    { siteId: site.id },
+  );
+  const instruments = new Map(
+    found.map(({ id, serialNumber }) => [serialNumber.normalize("NFC"), id]),
+  );
+  const workerIds = `{${[...workers.values()].map(({ id }) => id).join(",")}}`;
+  const shifts = await rows<{ id: string; workerId: string; date: string; start: string }>(
+    `SELECT id, worker_id AS "workerId", date::text AS date, to_char(local_start, 'HH24:MI') AS start FROM shifts
+     WHERE worker_id = ANY (CAST(:workerIds AS uuid[])) AND NOT is_void`,
+    { workerIds },
+  );
+  const shiftIds = new Map(
+    shifts.map(({ id, workerId, date, start }) => [`${workerId} ${date} ${start}`, id]),
+  );
+  const recorded = await recordedRuns(workerIds);
+  const today = localDate(new Date(), site.timeZone);
+
+  const runs: RunInput[] = [];
+  const days: { workerId: string; date: string }[] = [];
+  let unchanged = 0;
+  for (const lines of groups) {
+    const before = cells.issues.length;
+    const draft = readRun(cells, lines, workers, instruments);
+    if (!draft || cells.issues.length > before) continue;
+    const { worker, facts, start } = draft;
+    const first = lines[0]!;
+    refuseAll(cells, lines, [
+      ...employmentIssues(facts.date, worker),
+      ...futureIssues(facts.date, today),
+    ]);
+    const shiftId =
+      start === null
+        ? null
+        : (shiftIds.get(`${worker.id} ${facts.date} ${start}`) ??
+          cells.refuse(first, "start", "shift-unknown"));
+    const parsed = RunSchema.safeParse({ ...facts, shiftId });
+    if (!parsed.success) {
+      refuseAll(cells, lines, parsed.error.issues.map(toProblemIssue));
+      continue;
+    }
+    days.push({ workerId: worker.id, date: facts.date });
+    const same = recorded.get(keyOfRun(parsed.data));
+    if (same === undefined) runs.push(parsed.data);
+    else if (same === factsOf(parsed.data)) unchanged += 1;
+    // A recorded run is corrected on its own page, with its reason and its readings beside the earlier ones.
+    else cells.refuse(first, "instrument_serial", "reading-recorded-already");
+  }
+  return {
+    fresh: runs.length,
+    changed: 0,
+    unchanged,
+    days,
+    issues: cells.issues,
+    store: async (entryId) => {
+      for (const run of runs) await recordRun(actor, site.id, run, entryId);
+      return runs.map(({ workerId, date }) => ({ workerId, date }));
+    },
+  };
+}
+
+function refuseAll(cells: Cells, lines: readonly CsvLine[], issues: readonly ProblemIssue[]): void {
+  for (const { path, code, params } of issues) {
+    const at = path[0] === "readings" && typeof path[1] === "number" ? lines[path[1]] : lines[0];
+    cells.refuse(at ?? lines[0]!, columnOf(path), code, params);
+  }
+}
+
+function readRun(
+  cells: Cells,
+  lines: readonly CsvLine[],
+  workers: ReadonlyMap<string, ImportWorker>,
+  instruments: ReadonlyMap<string, string>,
+) {
+  const first = lines[0]!;
+  for (const line of lines.slice(1)) {
+    for (const name of runColumns) {
+      if ((line.cells.get(name) ?? "") !== (first.cells.get(name) ?? ""))
+        cells.refuse(line, name, "differs-within-run", { line: first.line });
+    }
+  }
+  const number = cells.needed(first, "employee_number");
+  const worker = number === null ? undefined : workers.get(number);
+  if (number !== null && !worker) cells.refuse(first, "employee_number", "worker-unknown");
+  const date = cells.date(first, "date");
+  const serial = cells.needed(first, "instrument_serial");
+  const instrumentId =
+    serial === null
+      ? null
+      : (instruments.get(serial) ?? cells.refuse(first, "instrument_serial", "instrument-unknown"));
+  const start = cells.time(first, "start");
+  const durationMin = cells.neededNumber(first, "duration_min");
+  const covers =
+    cells.choice(first, "covers", ["shift", "projected", "part"]) ??
+    (first.cells.get("covers") ? null : cells.refuse(first, "covers", "empty"));
+  const readings = lines.map((line) => {
+    const peakDb = cells.number(line, "peak_db");
+    const weighting = cells.choice(line, "peak_weighting", ["A", "C", "Z"]);
+    if ((peakDb === null) !== (weighting === null))
+      cells.refuse(line, peakDb === null ? "peak_db" : "peak_weighting", "empty");
+    return {
+      settings: {
+        criterionLevelDb: cells.neededNumber(line, "criterion_level_db"),
+        exchangeRateDb: cells.neededNumber(line, "exchange_rate_db"),
+        thresholdDb: cells.number(line, "threshold_db"),
+        weighting: cells.choice(line, "weighting", ["A", "C", "Z"]),
+        response: cells.choice(line, "response", ["slow", "fast", "none"]),
+      },
+      dosePct: cells.number(line, "dose_pct"),
+      averageDb: cells.number(line, "average_db"),
+      lceqDb: cells.number(line, "lceq_db"),
+      lasMaxDb: cells.number(line, "las_max_db"),
+      peak: peakDb === null || weighting === null ? null : { levelDb: peakDb, weighting },
+    };
+  });
+  if (!worker || date === null || instrumentId === null || durationMin === null || covers === null)
+    return null;
+  return {
+    worker,
+    start,
+    facts: {
+      workerId: worker.id,
+      date,
+      instrumentId,
+      durationMin,
+      covers,
+      readings,
+      checkBeforeDb: cells.number(first, "check_before_db"),
+      checkAfterDb: cells.number(first, "check_after_db"),
+      keptReason: cells.text(first, "kept_reason"),
+      unusual: cells.text(first, "unusual"),
+    },
+  };
+}
+
+const keyOfRun = ({
+  workerId,
+  date,
+  instrumentId,
+}: Pick<RunInput, "workerId" | "date" | "instrumentId">) => `${workerId} ${date} ${instrumentId}`;
+
+type Reading = RunInput["readings"][number];
+type Facts = Pick<RunInput, "durationMin" | "covers" | "readings">;
+
+/** What makes two runs the same one. */
+const factsOf = ({ durationMin, covers, readings }: Facts) =>
+  JSON.stringify([
+    durationMin,
+    covers,
+    ...readings.map(({ settings: s, dosePct, averageDb, lceqDb, lasMaxDb, peak }: Reading) => [
+      s.criterionLevelDb,
+      s.exchangeRateDb,
+      s.thresholdDb,
+      s.weighting,
+      s.response,
+      dosePct,
+      averageDb,
+      lceqDb,
+      lasMaxDb,
+      peak?.levelDb ?? null,
+      peak?.weighting ?? null,
+    ]),
+  ]);
+
+/** Runs recorded for these workers, as `factsOf` has them, by worker, date and instrument. */
+async function recordedRuns(workerIds: string): Promise<Map<string, string>> {
+  const found = await rows<{ workerId: string; date: string; instrumentId: string } & Facts>(
+    `SELECT r.worker_id AS "workerId", r.date::text AS date, r.instrument_id AS "instrumentId", v.duration_min AS "durationMin", v.covers,
+       (SELECT json_agg(json_build_object('settings', json_build_object('criterionLevelDb', g.criterion_level_db, 'exchangeRateDb', g.exchange_rate_db,
+            'thresholdDb', g.threshold_db, 'weighting', g.weighting, 'response', g.response), 'dosePct', g.dose_pct, 'averageDb', g.average_db, 'lceqDb', g.lceq_db,
+          'lasMaxDb', g.las_max_db, 'peak', CASE WHEN g.peak_db IS NOT NULL THEN json_build_object('levelDb', g.peak_db, 'weighting', g.peak_weighting) END) ORDER BY g.position)
+        FROM readings g WHERE g.run_revision_id = v.id) AS readings
+     FROM runs r JOIN run_revisions v ON v.id = r.current_revision_id WHERE r.worker_id = ANY (CAST(:workerIds AS uuid[])) AND NOT r.is_void`,
+    { workerIds },
+  );
+  return new Map(found.map((run) => [keyOfRun(run), factsOf(run)]));
+}

@@ -1,0 +1,56 @@
+import { type ReactNode, useId } from "react";
+import type { Choice } from "./form";
+
+/** What narrows a list, in one line above it. */
+export function FilterRow({ label, children }: { label: string; children: ReactNode }) {
+  return (
+    <search className="filter-row" aria-label={label}>
+      {children}
+    </search>
+  );
+}
+
+export function FilterSelect({
+  label,
+  value,
+  choices,
+  onChange,
+}: {
+  label: string;
+  value: string;
+  choices: readonly Choice[];
+  onChange: (value: string) => void;
+}) {
+  const id = useId();
+  return (
+    <span className="filter">
+      <label htmlFor={id}>{label}</label>
+      <select id={id} className="input" value={value} onChange={(event) => onChange(event.target.value)}>
+        {choices.map((choice) => (
+          <option key={choice.value} value={choice.value}>
+            {choice.label}
+          </option>
+        ))}
+      </select>
+    </span>
+  );
+}
+
+export function FilterText({ label, value, onChange }: { label: string; value: string; onChange: (value: string) => void }) {
+  const id = useId();
+  return (
+    <span className="filter">
+      <label htmlFor={id}>{label}</label>
+      <input id={id} type="search" className="input" autoComplete="off" value={value} onChange={(event) => onChange(event.target.value)} />
+    </span>
+  );
+}
+
+export function FilterCheck({ label, isChecked, onChange }: { label: string; isChecked: boolean; onChange: (isChecked: boolean) => void }) {
+  return (
+    <label className="choice filter-check">
+      <input type="checkbox" checked={isChecked} onChange={(event) => onChange(event.target.checked)} />
+      <span>{label}</span>
+    </label>
+  );
+}

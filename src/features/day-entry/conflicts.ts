@@ -1,0 +1,72 @@
+import type { DayGridView, GridRow, SavedShift } from "../../../shared/schemas/shift";
+import type { Cell } from "./cells";
+import { type CellId, taskCell, wornCell } from "./columns";
+import { openRow, type RowDraft } from "./draft";
+
+/** A field on which two savings of one shift differ. */
+export interface Difference {
+  readonly cell: CellId | "note";
+  readonly yours: Cell | string | undefined;
+  readonly saved: Cell | string | undefined;
+}
+
+const sameCell = (a: Cell | undefined, b: Cell | undefined) =>
+  JSON.stringify(a?.value ?? null) === JSON.stringify(b?.value ?? null) && !a?.fault;
+
+const isUnknown = (cell: Cell | undefined) => JSON.stringify(cell?.value ?? { how: "unknown" });
+
+/** The saved shift as a row, beside which the draft's row can be laid. */
+export const savedRow = (gridRow: GridRow, saved: SavedShift, view: DayGridView): RowDraft =>
+  openRow({ ...gridRow, saved }, view);
+
+/** Field by field what is yours and what is saved, where they differ. The reading has revisions of its own. */
+export function differences(
+  yours: RowDraft,
+  saved: RowDraft,
+  taskIds: readonly string[],
+): Difference[] {
+  const cells: CellId[] = [
+    "start",
+    "length",
+    ...taskIds.map(taskCell),
+    "unaccounted",
+    "worn",
+    ...taskIds.map(wornCell),
+  ];
+  const found: Difference[] = cells.flatMap((cell) => {
+    const [mine, theirs] = [yours.cells[cell], saved.cells[cell]];
+    const isSame =
+      cell === "unaccounted" ? isUnknown(mine) === isUnknown(theirs) : sameCell(mine, theirs);
+    return isSame ? [] : [{ cell, yours: mine, saved: theirs }];
+  });
+  if (yours.note !== saved.note) found.push({ cell: "note", yours: yours.note, saved: saved.note });
+  return found;
+}
+
+/** The row as chosen: on top of the saved revision, with what was taken from yours. */
+export function mergeRow(
+  yours: RowDraft,
+  saved: RowDraft,
+  taken: ReadonlySet<Difference["cell"]>,
+): RowDraft {
+  const cells: Partial<Record<CellId, Cell>> = { ...saved.cells };
+  for (const cell of taken) {
+    if (cell === "note") continue;
+    const mine = yours.cells[cell];
+    if (mine) cells[cell] = { ...mine, mark: "typed" };
+    else delete cells[cell];
+  }
+  if (yours.isReadingTouched && yours.cells.reading) cells.reading = yours.cells.reading;
+  return {
+    ...saved,
+    cells,
+    note: taken.has("note") ? yours.note : saved.note,
+    whichHour: taken.has("start") ? yours.whichHour : saved.whichHour,
+    confirmsWholeDay: taken.has("length") ? yours.confirmsWholeDay : saved.confirmsWholeDay,
+    readingSetup: yours.isReadingTouched ? yours.readingSetup : saved.readingSetup,
+    isReadingTouched: yours.isReadingTouched,
+    answered: yours.answered,
+    isTouched: taken.size > 0 || yours.isReadingTouched,
+    isConfirmed: false,
+  };
+}

@@ -1,0 +1,63 @@
+import { useLingui } from "@lingui/react";
+import { useMutation } from "@tanstack/react-query";
+import { useState } from "react";
+import { formatTime } from "../../../shared/format/date";
+import type { EntryNotices as Notices } from "../../../shared/schemas/notice";
+import { NoticeLine, type NoticeLineState } from "../../components/notice-line";
+import { problemText } from "../../lib/problem-text";
+import { LookDialog } from "./dialogs";
+import { handleNotices } from "./queries";
+
+const LINE: Readonly<Record<Notices["state"], NoticeLineState | null>> = {
+  none: null,
+  waiting: "will-be-told",
+  held: "held",
+  part: "held",
+  sent: "were-told",
+};
+
+/** Before anybody is told: who and when, and time to look, to hold or to send. */
+export function EntryNotices({
+  notices,
+  timeZone,
+  onChange,
+}: {
+  notices: Notices;
+  timeZone: string;
+  onChange: (notices: Notices) => void;
+}) {
+  const { i18n } = useLingui();
+  const [isLooking, setIsLooking] = useState(false);
+  const handle = useMutation({
+    mutationFn: (action: "hold" | "send-now") => handleNotices(notices.entryId, action),
+    onSuccess: onChange,
+  });
+  const state = LINE[notices.state];
+  if (!state || notices.people === 0) return null;
+  const names = [
+    ...new Set(notices.notices.flatMap(({ workers }) => workers.map(({ name }) => name))),
+  ].join(", ");
+  const time = notices.notices.find(({ sentAt }) => sentAt !== null)?.sentAt ?? notices.notBefore;
+  return (
+    <>
+      <NoticeLine
+        state={state}
+        peopleCount={notices.people}
+        time={time === null ? "" : formatTime(time, timeZone)}
+        detail={
+          handle.isError
+            ? problemText(i18n, handle.error)
+            : state === "held"
+              ? i18n.t("Nobody is told about {names}.", { names })
+              : undefined
+        }
+        onLook={() => setIsLooking(true)}
+        onHold={() => handle.mutate("hold")}
+        onSendNow={() => handle.mutate("send-now")}
+      />
+      {isLooking && (
+        <LookDialog notices={notices} timeZone={timeZone} onClose={() => setIsLooking(false)} />
+      )}
+    </>
+  );
+}

@@ -1,0 +1,251 @@
+import { useLingui } from "@lingui/react";
+import { useRef, useState } from "react";
+import { z } from "zod";
+import { type FindingStepInput, FindingView } from "../../../shared/schemas/finding";
+import { findingStateWord } from "../../../shared/findings/words";
+import { formatShortDate } from "../../../shared/format/date";
+import { Button } from "../../components/button";
+import { Dialog } from "../../components/dialog";
+import { DateField, Form, FormActions, showIssuesOn, SubmitButton, TextAreaField, useSchemaForm } from "../../components/form";
+import { Status } from "../../components/status";
+import { ApiError, newChangeKey } from "../../lib/api";
+import { useLocale } from "../../lib/i18n";
+import { problemText } from "../../lib/problem-text";
+import { useFindingStep } from "./queries";
+
+type StepKind = FindingStepInput["kind"];
+
+/** From where each step may be taken: the server holds to the same. */
+const STEPS_FROM: Readonly<Record<StepKind, readonly FindingView["state"][]>> = {
+  "take-in-hand": ["new", "came-back", "in-hand"],
+  "mark-done": ["new", "in-hand", "came-back"],
+  cannot: ["new", "in-hand", "came-back"],
+  reopen: ["done"],
+  close: ["new", "in-hand", "done", "came-back"],
+  comment: ["new", "in-hand", "done", "came-back", "closed"],
+};
+
+export function stepsFor(finding: Pick<FindingView, "state" | "can">): StepKind[] {
+  const rights: Readonly<Record<StepKind, boolean>> = {
+    "take-in-hand": finding.can.handle,
+    "mark-done": finding.can.markDone,
+    cannot: finding.can.markDone,
+    reopen: finding.can.handle,
+    close: finding.can.handle,
+    comment: finding.can.comment,
+  };
+  return (Object.keys(STEPS_FROM) as StepKind[]).filter((kind) => rights[kind] && STEPS_FROM[kind].includes(finding.state) && !(kind === "take-in-hand" && finding.state === "in-hand"));
+}
+
+/** What a person does about a finding, chosen first, then said. */
+export function StepForm({ finding }: { finding: FindingView }) {
+  const { i18n } = useLingui();
+  const [chosen, setChosen] = useState<StepKind | null>(null);
+  const [saved, setSaved] = useState<string | null>(null);
+  const kinds = stepsFor(finding);
+  const labels: Readonly<Record<StepKind, string>> = {
+    "take-in-hand": i18n.t("Take in hand"),
+    "mark-done": i18n.t("Mark done"),
+    cannot: i18n.t("Can’t, because…"),
+    reopen: i18n.t("Reopen"),
+    close: i18n.t("Close"),
+    comment: i18n.t("Comment"),
+  };
+  const current = chosen !== null && kinds.includes(chosen) ? chosen : null;
+  if (kinds.length === 0) return null;
+  return (
+    <div className="step-form no-print">
+      {/* biome-ignore lint/a11y/useSemanticElements: buttons that open a form, not form controls */}
+      <div className="step-choice" role="group" aria-label={i18n.t("What you do about it")}>
+        {kinds.map((kind) => (
+          <Button
+            key={kind}
+            aria-pressed={current === kind}
+            onClick={() => {
+              setChosen(current === kind ? null : kind);
+              setSaved(null);
+            }}
+          >
+            {labels[kind]}
+          </Button>
+        ))}
+        {saved && <Status>{saved}</Status>}
+      </div>
+      {current && (
+        <Step
+          key={current}
+          kind={current}
+          label={labels[current]}
+          finding={finding}
+          onDone={() => {
+            setChosen(null);
+            setSaved(i18n.t("saved"));
+          }}
+          onCancel={() => setChosen(null)}
+        />
+      )}
+    </div>
+  );
+}
+
+/** Fields of a step: a date, or a text that some steps need. The server's own schema checks them once more. */
+const TextStep = z.object({ text: z.string().trim().min(3).max(2000) });
+const FreeTextStep = z.object({ text: z.string().trim().max(2000) });
+const CommentStep = z.object({ text: z.string().trim().min(1).max(10_000) });
+const DueStep = z.object({ dueOn: z.iso.date().nullable() });
+
+interface StepProps {
+  kind: StepKind;
+  label: string;
+  finding: FindingView;
+  onDone: () => void;
+  onCancel: () => void;
+}
+
+function Step(props: StepProps) {
+  return props.kind === "take-in-hand" ? <DueForm {...props} /> : <TextForm {...props} kind={props.kind} />;
+}
+
+function useSend({ finding, onDone }: StepProps) {
+  const send = useFindingStep(finding.id);
+  const key = useRef(newChangeKey());
+  const [current, setCurrent] = useState<FindingView | null>(null);
+  const [body, setBody] = useState<FindingStepInput | null>(null);
+  return {
+    isPending: send.isPending,
+    error: send.error,
+    current,
+    forget: () => setCurrent(null),
+    /** Again after a conflict, from the revision that stands now. */
+    again: () => body && current && submit(body, current.revision, () => undefined),
+    submit,
+  };
+
+  function submit(step: FindingStepInput, revision: number, onIssues: (error: unknown) => void) {
+    setBody(step);
+    send.mutate(
+      { body: step, revision, key: key.current },
+      {
+        onSuccess: onDone,
+        onError: (error) => {
+          // The same change goes again under the same key only where nobody knows whether it arrived.
+          if (!(error instanceof ApiError) || error.status !== 0) key.current = newChangeKey();
+          if (error instanceof ApiError && error.status === 412) {
+            const parsed = z.object({ current: FindingView }).safeParse(error.body);
+            if (parsed.success) setCurrent(parsed.data.current);
+          } else onIssues(error);
+        },
+      },
+    );
+  }
+}
+
+function DueForm(props: StepProps) {
+  const { i18n } = useLingui();
+  const send = useSend(props);
+  const form = useSchemaForm(DueStep, { defaultValues: { dueOn: props.finding.dueOn } });
+  return (
+    <Form
+      aria-label={props.label}
+      onSubmit={form.handleSubmit(({ dueOn }) => send.submit({ kind: "take-in-hand", dueOn }, props.finding.revision, showIssuesOn(form, i18n)))}
+    >
+      <DateField form={form} name="dueOn" label={i18n.t("Due")} note={i18n.t("By when you want it done. Empty leaves the date as it is.")} isOptional />
+      <StepEnd send={send} {...props} />
+    </Form>
+  );
+}
+
+function TextForm(props: StepProps & { kind: Exclude<StepKind, "take-in-hand"> }) {
+  const { i18n } = useLingui();
+  const { kind } = props;
+  const send = useSend(props);
+  const schema = kind === "comment" ? CommentStep : kind === "mark-done" ? FreeTextStep : TextStep;
+  const form = useSchemaForm(schema, { defaultValues: { text: "" } });
+  const labels = {
+    "mark-done": i18n.t("What was done"),
+    cannot: i18n.t("Can’t, because"),
+    reopen: i18n.t("Why it is open again"),
+    close: i18n.t("Why it is closed"),
+    comment: i18n.t("Comment"),
+  };
+  return (
+    <Form aria-label={props.label} onSubmit={form.handleSubmit(({ text }) => send.submit({ kind, text }, props.finding.revision, showIssuesOn(form, i18n)))}>
+      <TextAreaField
+        form={form}
+        name="text"
+        label={labels[kind]}
+        rows={3}
+        isOptional={kind === "mark-done"}
+        note={kind === "close" ? i18n.t("It comes back only for a day dated after today.") : undefined}
+      />
+      <StepEnd send={send} {...props} />
+    </Form>
+  );
+}
+
+function StepEnd({ send, label, finding, onCancel }: StepProps & { send: ReturnType<typeof useSend> }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const isConflict = send.error instanceof ApiError && send.error.status === 412;
+  return (
+    <>
+      {send.error && !isConflict && (
+        <p className="field-error" role="alert">
+          {problemText(i18n, send.error)}
+        </p>
+      )}
+      <FormActions>
+        <SubmitButton isBusy={send.isPending}>{label}</SubmitButton>
+        <Button onClick={onCancel}>{i18n.t("Leave it")}</Button>
+      </FormActions>
+      <Dialog
+        isOpen={send.current !== null}
+        onClose={send.forget}
+        title={i18n.t("Someone saved this finding before you")}
+        lead={i18n.t("Nothing of yours is lost; choose what stands.")}
+        actions={
+          <>
+            <Button kind="primary" isBusy={send.isPending} onClick={() => { send.forget(); send.again(); }}>
+              {i18n.t("{step} all the same", { step: label })}
+            </Button>
+            <Button onClick={() => { send.forget(); onCancel(); }}>{i18n.t("Keep what was saved")}</Button>
+          </>
+        }
+      >
+        {send.current && (
+          <table className="choice-table">
+            <thead>
+              <tr>
+                <th scope="col">{i18n.t("Finding")}</th>
+                <th scope="col">{i18n.t("You saw")}</th>
+                <th scope="col">{i18n.t("Saved, revision {revision}", { revision: send.current.revision })}</th>
+              </tr>
+            </thead>
+            <tbody>
+              <tr>
+                <th scope="row">{i18n.t("State")}</th>
+                <td>{findingStateWord(i18n, finding.state)}</td>
+                <td className={finding.state === send.current.state ? undefined : "differs"}>{findingStateWord(i18n, send.current.state)}</td>
+              </tr>
+              <tr>
+                <th scope="row">{i18n.t("Due")}</th>
+                <td>{finding.dueOn ? formatShortDate(finding.dueOn, locale) : "–"}</td>
+                <td className={finding.dueOn === send.current.dueOn ? undefined : "differs"}>{send.current.dueOn ? formatShortDate(send.current.dueOn, locale) : "–"}</td>
+              </tr>
+              <tr>
+                <th scope="row">{i18n.t("Last step")}</th>
+                <td>{lastStep(finding)}</td>
+                <td className="differs">{lastStep(send.current)}</td>
+              </tr>
+            </tbody>
+          </table>
+        )}
+      </Dialog>
+    </>
+  );
+}
+
+function lastStep({ steps }: FindingView): string {
+  const last = steps.at(-1);
+  return [last?.authorName, last?.text].filter(Boolean).join(": ") || "–";
+}

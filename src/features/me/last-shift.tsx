@@ -1,0 +1,90 @@
+import type { I18n } from "@lingui/core";
+import { useLingui } from "@lingui/react";
+import { formatDay } from "../../../shared/format/date";
+import { formatLimit, formatWholeLevel } from "../../../shared/format/level";
+import type { Locale } from "../../../shared/i18n/index";
+import { type StripFrame, stripOfDay, useStripFrame } from "../../components/day-figures";
+import { DropStrip } from "../../components/drop-strip";
+import { Empty } from "../../components/empty";
+import { useLocale } from "../../lib/i18n";
+import { Emphasis } from "./emphasis";
+import type { OwnDay } from "./queries";
+
+/** The last shift in one sentence; what stands out is between asterisks. */
+export function lastShiftSentence(
+  i18n: I18n,
+  locale: Locale,
+  day: OwnDay,
+  frame: Pick<StripFrame, "limits" | "hasLimitAtEar">,
+): string {
+  const { atEarDb, outsideDb, uncertaintyDb } = day;
+  const [limit] = frame.limits;
+  const values = {
+    day: formatDay(day.date, locale),
+    level: formatWholeLevel(atEarDb, locale),
+    around: formatWholeLevel(outsideDb, locale),
+    limit: limit ? formatLimit(limit.levelDb, locale) : "",
+    top: atEarDb === null ? "" : formatWholeLevel(atEarDb + (uncertaintyDb ?? 0), locale),
+  };
+  if (atEarDb === null || day.verdictAtEar === "not-assessed") {
+    if (atEarDb !== null && !frame.hasLimitAtEar) {
+      if (day.word === "too-little")
+        return i18n.t(
+          "On {day} *{level} decibels* reached your ear. Your protector was too little for that.",
+          values,
+        );
+      if (day.word !== null)
+        return i18n.t(
+          "On {day} *{level} decibels* reached your ear. Your protector was enough.",
+          values,
+        );
+      return i18n.t("On {day} *{level} decibels* reached your ear.", values);
+    }
+    if (day.reason === "wearing-unknown")
+      return i18n.t(
+        "On {day} we can’t say how much reached your ear: nobody wrote down how long you wore your protector.",
+        values,
+      );
+    if (day.reason === "time-unknown")
+      return i18n.t(
+        "On {day} we can’t say how much reached your ear: a part of your shift is not written down.",
+        values,
+      );
+    return outsideDb === null
+      ? i18n.t("On {day} we can’t say how loud it was.", values)
+      : i18n.t(
+          "On {day} it was *{around} decibels* around you. We can’t say how much reached your ear.",
+          values,
+        );
+  }
+  if (day.verdictAtEar === "over")
+    return i18n.t("On {day} *{level} decibels* reached your ear, over the limit of {limit}.", values);
+  if (day.verdictAtEar === "cant-tell-yet")
+    return i18n.t(
+      "On {day} about *{level} decibels* reached your ear. It could be up to {top}, and the limit is {limit}.",
+      values,
+    );
+  return i18n.t("On {day} *{level} decibels* reached your ear, under the limit of {limit}.", values);
+}
+
+export function LastShift({ day }: { day: OwnDay | null }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const frame = useStripFrame(day);
+  if (!day || !frame) return <Empty title={i18n.t("No shift of yours is recorded yet.")} />;
+  return (
+    <>
+      <p>
+        <Emphasis text={lastShiftSentence(i18n, locale, day, frame)} />
+      </p>
+      {(day.atEarDb !== null || day.outsideDb !== null) && (
+        <div className="me-strip">
+          <DropStrip {...stripOfDay(day, frame)} variant="worker" />
+        </div>
+      )}
+      {day.isStale && (
+        <p className="me-note">{i18n.t("Something was corrected; this is being worked out again.")}</p>
+      )}
+    </>
+  );
+}

@@ -1,0 +1,129 @@
+import { useLingui } from "@lingui/react";
+import { useId, useState } from "react";
+import { formatDay, formatMonth } from "../../../shared/format/date";
+import { formatWholeLevel } from "../../../shared/format/level";
+import { useStripFrame } from "../../components/day-figures";
+import { Empty } from "../../components/empty";
+import { HistoryChart, type HistoryMark } from "../../components/history-chart";
+import { TextButton } from "../../components/link";
+import { Verdict } from "../../components/verdict";
+import { useLocale } from "../../lib/i18n";
+import type { OwnProtector } from "./own-protectors";
+import type { OwnDay } from "./queries";
+import { nameOf } from "./what-to-do";
+import { weeksOf } from "./weeks";
+
+/** Over a longer time the days' ticks run into one another on a phone. */
+const LONGEST_BY_DAY = 100;
+/** With more, a figure at the highest would stand in the crowd. */
+const MOST_OVER_WITH_NOTE = 3;
+/** Room under the ticks for what a mark says, dB. */
+const LABEL_ROOM_DB = 10;
+const ROWS_AT_ONCE = 20;
+
+const daysBetween = (from: string, to: string) => (Date.parse(to) - Date.parse(from)) / 86_400_000;
+
+/** A whole ten that leaves the mark's words free of ticks. */
+const lowForLabels = (levels: readonly number[]) =>
+  Math.min(70, 10 * Math.floor((Math.min(...levels) - LABEL_ROOM_DB) / 10));
+
+/** The year as a picture, and the same as a list behind it. */
+export function MyHistory({
+  days,
+  assignments,
+}: {
+  /** Latest first, as they come. */
+  days: readonly OwnDay[];
+  assignments: readonly OwnProtector[];
+}) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const listId = useId();
+  const [showsList, setShowsList] = useState(false);
+  const [rowCount, setRowCount] = useState(ROWS_AT_ONCE);
+  const frame = useStripFrame(days[0] ?? null);
+  if (days.length === 0) return <Empty title={i18n.t("No shift of yours is recorded yet.")} />;
+
+  const inOrder = days.map(({ date, atEarDb }) => ({ date, levelDb: atEarDb })).reverse();
+  const first = inOrder[0]?.date ?? "";
+  const isByWeek = daysBetween(first, inOrder.at(-1)?.date ?? first) > LONGEST_BY_DAY;
+  const shown = isByWeek ? weeksOf(inOrder) : inOrder;
+  const limitDb = frame?.hasLimitAtEar ? (frame.limits[0]?.levelDb ?? null) : null;
+  const over = shown
+    .filter(({ levelDb }) => levelDb !== null && limitDb !== null && levelDb > limitDb)
+    .sort((a, b) => (b.levelDb ?? 0) - (a.levelDb ?? 0));
+  const worst = over.length <= MOST_OVER_WITH_NOTE ? over[0] : undefined;
+  const levels = shown.flatMap(({ levelDb }) => (levelDb === null ? [] : [levelDb]));
+  const marks: HistoryMark[] = assignments
+    .filter(({ use, fromDate }) => use === "everywhere" && fromDate > first)
+    .map((one) => ({
+      date: one.fromDate,
+      label: i18n.t("your {protector}, from {month}", {
+        protector: nameOf(i18n, one),
+        month: formatMonth(one.fromDate, locale),
+      }),
+    }));
+  return (
+    <>
+      <HistoryChart
+        variant="worker"
+        title={i18n.t("My year at the ear")}
+        days={shown.map((day) =>
+          day === worst ? { ...day, note: formatWholeLevel(day.levelDb, locale) } : day,
+        )}
+        limitDb={limitDb}
+        marks={marks}
+        lowDb={marks.length > 0 ? lowForLabels(levels) : undefined}
+        tableLink={
+          <TextButton
+            className="me-list-link"
+            aria-expanded={showsList}
+            aria-controls={listId}
+            onClick={() => setShowsList(!showsList)}
+          >
+            {i18n.t("The same as a list")}
+          </TextButton>
+        }
+      />
+      {isByWeek && (
+        <p className="me-note">{i18n.t("Each mark is the loudest day of a week. The list has every day.")}</p>
+      )}
+      <div id={listId} hidden={!showsList}>
+        {showsList && (
+          <table className="data-table me-list">
+            <caption className="sr-only">{i18n.t("My year at the ear")}</caption>
+            <thead>
+              <tr>
+                <th scope="col">{i18n.t("Day")}</th>
+                <th scope="col" className="is-right">
+                  {i18n.t("At your ear")}
+                  <span className="unit block">{i18n.t("decibels")}</span>
+                </th>
+                <th scope="col" className="is-right">
+                  {i18n.t("Around you")}
+                  <span className="unit block">{i18n.t("decibels")}</span>
+                </th>
+                <th scope="col">{limitDb !== null && i18n.t("Limit {limit}", { limit: formatWholeLevel(limitDb, locale) })}</th>
+              </tr>
+            </thead>
+            <tbody>
+              {days.slice(0, rowCount).map((day) => (
+                <tr key={day.date}>
+                  <th scope="row">{formatDay(day.date, locale)}</th>
+                  <td className="is-figure">{formatWholeLevel(day.atEarDb, locale)}</td>
+                  <td className="is-figure">{formatWholeLevel(day.outsideDb, locale)}</td>
+                  <td>{limitDb !== null && <Verdict verdict={day.verdictAtEar} />}</td>
+                </tr>
+              ))}
+            </tbody>
+          </table>
+        )}
+        {showsList && rowCount < days.length && (
+          <TextButton className="me-list-link" onClick={() => setRowCount(rowCount * 3)}>
+            {i18n.t("and more")}
+          </TextButton>
+        )}
+      </div>
+    </>
+  );
+}

@@ -1,0 +1,47 @@
+import { queryOptions, useMutation, useQueryClient } from "@tanstack/react-query";
+import type { z } from "zod";
+import type { HistoryPage, WorkerView } from "../../../shared/schemas/worker";
+import { api } from "../../lib/api";
+import { ownReply } from "../../lib/own-reply";
+
+export type OwnDay = z.infer<typeof HistoryPage>["rows"][number];
+
+/** More than a worker has days in a year. */
+const A_YEAR_OF_DAYS = 400;
+
+export const ownQueries = {
+  all: ["me"] as const,
+  worker: (workerId: string) =>
+    queryOptions({
+      queryKey: ["me", workerId],
+      queryFn: ({ signal }) =>
+        api.get(`/workers/${workerId}`, {
+          schema: ownReply<WorkerView>("name", "siteId", "assignments", "can"),
+          signal,
+        }),
+    }),
+  days: (workerId: string, from: string) =>
+    queryOptions({
+      queryKey: ["me", workerId, "days", from],
+      queryFn: ({ signal }) =>
+        api.get(`/workers/${workerId}/days`, {
+          query: { from, limit: A_YEAR_OF_DAYS },
+          schema: ownReply<{ rows: OwnDay[] }>("rows"),
+          signal,
+        }),
+      select: ({ rows }) => rows,
+    }),
+};
+
+export function useReportProblem(workerId: string) {
+  const client = useQueryClient();
+  return useMutation({
+    mutationFn: ({ text, idempotencyKey }: { text: string; idempotencyKey: string }) =>
+      api.post(`/workers/${workerId}/problems`, {
+        body: { text },
+        idempotencyKey,
+        schema: ownReply<{ id: string }>("id"),
+      }),
+    onSuccess: () => client.invalidateQueries({ queryKey: ownQueries.all }),
+  });
+}

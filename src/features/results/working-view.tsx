@@ -1,0 +1,240 @@
+import { useLingui } from "@lingui/react";
+import { Fragment, type ReactNode } from "react";
+import { SOURCES } from "../../../shared/acoustics/sources";
+import type { MathPart, Working, WorkingStep, WorkingTable, WorkingValue } from "../../../shared/acoustics/working";
+import { scientificParts } from "../../../shared/format/figures";
+import { Equation, Fraction, Power, PutIn, Relation, Result, Sum, Sym } from "../../components/equation";
+import { ShareBar } from "../../components/share-bar";
+import { Verdict } from "../../components/verdict";
+import { useLocale } from "../../lib/i18n";
+import { isLimitAt, limitText, mathText, workingText, workingValueText } from "./working-words";
+
+const NUMERIC: ReadonlySet<WorkingValue["kind"]> = new Set(["level", "difference", "minutes", "share", "dose", "scientific", "number"]);
+
+function Value({ value }: { value: WorkingValue }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  if (value.kind === "verdict") return <Verdict verdict={value.verdict} isQuiet>{workingValueText(i18n, locale, value)}</Verdict>;
+  if (value.kind === "math")
+    return (
+      <span className="test-line">
+        <MathLine parts={value.parts} />
+      </span>
+    );
+  if (value.kind === "scientific") {
+    const parts = scientificParts(value.number, locale);
+    if (!parts) return <>–</>;
+    return (
+      <span className="no-wrap">
+        {parts.mantissa} × 10<sup>{String(parts.exponent).replace("-", "−")}</sup>
+      </span>
+    );
+  }
+  if (value.kind === "protector-word")
+    return <span className={value.word === "too-little" || value.word === "too-much" ? "is-fault" : undefined}>{workingValueText(i18n, locale, value)}</span>;
+  if (value.kind === "reason") return <span className="not-assessed">{workingValueText(i18n, locale, value)}</span>;
+  if (value.kind === "list" && value.values.some(({ kind }) => kind === "text"))
+    return (
+      <ul className="duties">
+        {value.values.map((one) => (
+          <li key={workingValueText(i18n, locale, one)}>{workingValueText(i18n, locale, one)}</li>
+        ))}
+      </ul>
+    );
+  return <>{workingValueText(i18n, locale, value)}</>;
+}
+
+const RELATIONS = /^(=|≤|<|>|≥|≈)$/;
+
+function MathLine({ parts }: { parts: readonly MathPart[] }): ReactNode {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  return parts.map((part, index) => {
+    // The parts of an equation have no identity but their place.
+    const key = `${part.kind} ${index}`;
+    switch (part.kind) {
+      case "sign":
+        if (RELATIONS.test(part.text)) return <Relation key={key}>{part.text}</Relation>;
+        return <Fragment key={key}>{part.text === "," ? ", " : ` ${part.text} `}</Fragment>;
+      case "symbol":
+        return (
+          <Sym key={key} sub={part.sub}>
+            {part.base}
+            {part.isAtEar ? "′" : ""}
+          </Sym>
+        );
+      case "value":
+        return part.isResult ? (
+          <Result key={key}>
+            <Value value={part.value} />
+            {part.value.kind === "level" || part.value.kind === "difference" ? " dB" : ""}
+          </Result>
+        ) : (
+          <PutIn key={key}>{isLimitAt(parts, index) ? limitText(i18n, locale, part.value) : <Value value={part.value} />}</PutIn>
+        );
+      case "sum":
+        return <Sum key={key} />;
+      case "fraction":
+        return <Fraction key={key} over={<MathLine parts={part.over} />} under={<MathLine parts={part.under} />} />;
+      case "power":
+        return (
+          <Power key={key} base={part.base}>
+            <MathLine parts={part.exponent} />
+          </Power>
+        );
+    }
+  });
+}
+
+function StepTable({ table, caption }: { table: WorkingTable; caption: string }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  return (
+    // biome-ignore lint/a11y/noNoninteractiveTabindex: a table wider than its frame is scrolled by keys
+    <div className="working-scroll" role="region" aria-label={i18n.t("Table: {title}", { title: caption })} tabIndex={0}>
+      <table className="working-table">
+        <caption className="sr-only">{caption}</caption>
+        <thead>
+          <tr>
+            {table.columns.map((column) => (
+              <th key={column.id} scope="col" className={column.isNumeric ? "is-right" : undefined}>
+                {column.title && workingText(i18n, locale, column.title)}
+                {column.symbol && (
+                  <>
+                    {" "}
+                    <MathLine parts={column.symbol} />
+                  </>
+                )}
+                {!column.title && !column.symbol && <span className="sr-only">{i18n.t("Remark")}</span>}
+              </th>
+            ))}
+          </tr>
+        </thead>
+        <tbody>
+          {table.rows.map((row) => (
+            <tr key={row.id} className={row.isTotal ? "is-total" : row.isEmphasized ? "is-emphasized" : undefined}>
+              {row.cells.map((cell, index) => {
+                const column = table.columns[index];
+                const key = column?.id ?? index;
+                const isNumber = cell !== null && (NUMERIC.has(cell.kind) || cell.kind === "list") && column?.isNumeric;
+                const className = column?.isNumeric ? `is-right${isNumber || cell === null ? " mono" : ""}` : undefined;
+                const content = cell === null ? (column?.isNumeric && !row.isTotal ? "–" : "") : <Value value={cell} />;
+                return index === 0 ? (
+                  <th key={key} scope="row">
+                    {content}
+                  </th>
+                ) : (
+                  <td key={key} className={className}>
+                    {content}
+                  </td>
+                );
+              })}
+            </tr>
+          ))}
+        </tbody>
+      </table>
+    </div>
+  );
+}
+
+/** The three lines that head a working: the ear, the protector, the noise without it. Each is judged apart. */
+export function WorkingLines({ working }: { working: Working }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  return (
+    <table className="working-lines">
+      <caption className="sr-only">{i18n.t("The result in three lines")}</caption>
+      <tbody>
+        {working.lines.map((line) => {
+          const { outcome } = line;
+          const isQuiet = line.id === "without-protection";
+          return (
+            <tr key={line.id} className={isQuiet ? "is-quiet" : undefined}>
+              <th scope="row">{workingText(i18n, locale, line.title)}</th>
+              <td className="working-lines-level">
+                <span className="mono">{line.level ? workingValueText(i18n, locale, line.level) : "–"}</span>
+                {line.level && line.uncertainty && <span className="figure-u">±{workingValueText(i18n, locale, line.uncertainty)}</span>}
+              </td>
+              <td>
+                {outcome?.kind === "verdict" ? (
+                  <Verdict verdict={outcome.verdict} isQuiet={isQuiet}>
+                    {workingValueText(i18n, locale, outcome)}
+                  </Verdict>
+                ) : (
+                  outcome && <b><Value value={outcome} /></b>
+                )}
+              </td>
+              <td className="working-lines-remark">{line.remark && workingText(i18n, locale, line.remark)}</td>
+            </tr>
+          );
+        })}
+      </tbody>
+    </table>
+  );
+}
+
+/** One numbered step, with what it rests on in the margin. */
+export function WorkingStepView({ step, children }: { step: WorkingStep; children: ReactNode }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const title = workingText(i18n, locale, step.title);
+  const id = `step-${step.number}`;
+  const tables = step.tables.map((table) => <StepTable key={table.columns.map((column) => column.id).join(" ")} table={table} caption={title} />);
+  const equations = step.equations.map((equation) => (
+    <Equation key={equation.number} number={equation.number} spoken={mathText(i18n, locale, equation.parts)}>
+      <MathLine parts={equation.parts} />
+    </Equation>
+  ));
+  const isUncertainty = step.shares.length > 0;
+  return (
+    <section className="working-step" aria-labelledby={id}>
+      <div className="working-main">
+        <span className="working-number" aria-hidden="true">
+          {step.number}
+        </span>
+        <div className="working-content">
+          <h2 id={id}>{title}</h2>
+          {isUncertainty ? (
+            <>
+              {equations}
+              <ShareBar
+                kind="uncertainty"
+                lead={i18n.t("Share of u²")}
+                shares={step.shares.map(({ label, pct }) => ({ label: workingText(i18n, locale, label).toLocaleLowerCase(locale), sharePct: pct }))}
+              />
+              {tables}
+            </>
+          ) : (
+            <>
+              {tables}
+              {equations}
+            </>
+          )}
+          {step.notes.map((note) => (
+            <p key={workingText(i18n, locale, note)} className="working-note">
+              {workingText(i18n, locale, note)}
+            </p>
+          ))}
+        </div>
+      </div>
+      <aside className="working-margin" aria-label={i18n.t("What step {number} rests on", { number: step.number })}>
+        {step.sources.length > 0 && (
+          <p>
+            <b>{i18n.t("Source.")}</b>{" "}
+            {step.sources
+              .map(({ id: sourceId, clause }) => {
+                if (sourceId === null) return clause;
+                const source = SOURCES[sourceId];
+                const cited = [source.title, source.edition, clause].filter(Boolean).join(", ");
+                return source.status === "from-memory" ? i18n.t("{cited} (clause from memory)", { cited }) : cited;
+              })
+              .filter(Boolean)
+              .join("; ")}
+            .
+          </p>
+        )}
+        {children}
+      </aside>
+    </section>
+  );
+}

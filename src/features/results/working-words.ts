@@ -1,0 +1,123 @@
+import type { I18n } from "@lingui/core";
+import type { AttenuationMethod } from "../../../shared/acoustics/types";
+import type { MathPart, WorkingText, WorkingValue } from "../../../shared/acoustics/working";
+import { reasonText } from "../../../shared/findings/reasons";
+import { formatDose, formatShare } from "../../../shared/format/dose";
+import { formatMinutes } from "../../../shared/format/duration";
+import { formatFigures, scientificParts } from "../../../shared/format/figures";
+import { formatLevel, formatLimit } from "../../../shared/format/level";
+import { formatNumber, NO_FIGURE } from "../../../shared/format/number";
+import type { Locale } from "../../../shared/i18n/index";
+import { protectorWordText } from "../../components/protector-word";
+import { verdictWord } from "../../components/verdict";
+
+export function methodText(i18n: I18n, method: AttenuationMethod): string {
+  switch (method) {
+    case "octave-band":
+      return i18n.t("Octave-band");
+    case "hml":
+      return "HML";
+    case "snr":
+      return "SNR";
+    case "us-single-number":
+      return i18n.t("US single number");
+    case "slc80":
+      return "SLC80";
+    case "own-fit":
+      return i18n.t("Own fit");
+  }
+}
+
+/** Values of a message that are a rule's own, not computed: as short as the rule prints them. */
+const LIMIT_NAMES: ReadonlySet<string> = new Set(["value", "action", "five", "ten", "fifteen", "target"]);
+const COMPARATORS: ReadonlySet<string> = new Set([">", "≥", "<", "≤"]);
+
+export const limitText = (i18n: I18n, locale: Locale, value: WorkingValue): string =>
+  value.kind === "level" ? formatLimit(value.db, locale) : workingValueText(i18n, locale, value);
+
+/** What stands after a comparator is the rule's value. */
+export const isLimitAt = (parts: readonly MathPart[], index: number): boolean => {
+  const before = parts[index - 1];
+  return before?.kind === "sign" && COMPARATORS.has(before.text);
+};
+
+/** A message of the working in the reader's language, with its numbers put in. */
+export function workingText(i18n: I18n, locale: Locale, text: WorkingText): string {
+  const values = Object.fromEntries(
+    Object.entries(text.values ?? {}).map(([name, value]) => [
+      name,
+      LIMIT_NAMES.has(name) ? limitText(i18n, locale, value) : workingValueText(i18n, locale, value),
+    ]),
+  );
+  return i18n._(text.id, values);
+}
+
+const SUPERSCRIPTS: Readonly<Record<string, string>> = {
+  "-": "⁻", "0": "⁰", "1": "¹", "2": "²", "3": "³", "4": "⁴", "5": "⁵", "6": "⁶", "7": "⁷", "8": "⁸", "9": "⁹",
+};
+const raised = (exponent: number): string => [...String(exponent)].map((sign) => SUPERSCRIPTS[sign] ?? sign).join("");
+
+/** A number or word of the working, rounded by its kind as a reader sees it. */
+export function workingValueText(i18n: I18n, locale: Locale, value: WorkingValue): string {
+  switch (value.kind) {
+    case "level":
+      return formatLevel(value.db, locale);
+    case "difference":
+      return formatNumber(value.db, 1, locale);
+    case "minutes":
+      return formatMinutes(value.min, locale);
+    case "share":
+      return formatShare(value.pct, locale);
+    case "dose":
+      return formatDose(value.pct, locale);
+    case "scientific": {
+      const parts = scientificParts(value.number, locale);
+      return parts ? `${parts.mantissa} × 10${raised(parts.exponent)}` : NO_FIGURE;
+    }
+    case "number":
+      return formatFigures(value.number, locale);
+    case "verdict": {
+      const word = verdictWord(i18n, value.verdict);
+      return value.verdict === "over" && value.isClear ? i18n.t("{verdict}, clearly", { verdict: word }) : word;
+    }
+    case "protector-word":
+      return protectorWordText(i18n, value.word);
+    case "method":
+      return methodText(i18n, value.method);
+    case "reason":
+      return reasonText(i18n, value.reason);
+    case "name":
+      return value.name;
+    case "text":
+      return workingText(i18n, locale, value.text);
+    case "list":
+      return value.values
+        .map((one) => workingValueText(i18n, locale, one))
+        .join(value.values.some(({ kind }) => kind === "text") ? "; " : " ");
+    case "math":
+      return mathText(i18n, locale, value.parts);
+  }
+}
+
+/** An equation as one line of text: what is read out, and what stands in the CSV. */
+export function mathText(i18n: I18n, locale: Locale, parts: readonly MathPart[]): string {
+  return parts
+    .map((part, index): string => {
+      switch (part.kind) {
+        case "sign":
+          return part.text;
+        case "symbol":
+          return `${part.base}${part.isAtEar ? "′" : ""}${part.sub ? ` ${part.sub}` : ""}`;
+        case "value":
+          return isLimitAt(parts, index) ? limitText(i18n, locale, part.value) : workingValueText(i18n, locale, part.value);
+        case "sum":
+          return "Σ";
+        case "fraction":
+          return `${mathText(i18n, locale, part.over)} / ${mathText(i18n, locale, part.under)}`;
+        case "power":
+          return `${part.base}^(${mathText(i18n, locale, part.exponent)})`;
+      }
+    })
+    .join(" ")
+    .replaceAll(" ,", ",");
+}

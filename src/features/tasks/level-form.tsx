@@ -1,0 +1,341 @@
+import { useLingui } from "@lingui/react";
+import { useMutation, useQueryClient } from "@tanstack/react-query";
+import { useState } from "react";
+import { get, type UseFormReturn } from "react-hook-form";
+import type { z } from "zod";
+import { formatDate } from "../../../shared/format/date";
+import { formatLevel } from "../../../shared/format/level";
+import { GradeName, InstrumentClassName } from "../../../shared/schemas/evaluation";
+import type { ChangePreview } from "../../../shared/schemas/site";
+import { TaskDetail, TaskLevelInput, type TaskLevelView } from "../../../shared/schemas/task";
+import { BandFields } from "../../components/band-fields";
+import { Button } from "../../components/button";
+import { ChangeReview, useChangePreview } from "../../components/change-preview";
+import {
+  DateField,
+  Field,
+  Form,
+  FormActions,
+  NumberField,
+  SelectField,
+  SubmitButton,
+  showIssuesOn,
+  TextAreaField,
+  useSchemaForm,
+} from "../../components/form";
+import { FormProblem } from "../../components/form-problem";
+import {
+  COMMON_SETTINGS,
+  SettingsInput,
+  type TypedSettings,
+} from "../../components/meter-settings";
+import { NumberInput } from "../../components/number-input";
+import { ApiError, api } from "../../lib/api";
+import { useChangeKey } from "../../lib/change-key";
+import { useLocale } from "../../lib/i18n";
+import { gradeWord, instrumentClassWord } from "../../lib/register-words";
+import { paths } from "../../paths";
+import { taskQueries } from "./queries";
+import { SamplesField } from "./samples-field";
+
+type Detail = z.infer<typeof TaskDetail>;
+type Level = z.infer<typeof TaskLevelView>;
+type Input = z.input<typeof TaskLevelInput>;
+export type TaskLevelForm = UseFormReturn<Input, unknown, TaskLevelInput>;
+
+const messageAt = (form: TaskLevelForm, path: string): string | undefined => {
+  const found = get(form.formState.errors, path) as Record<string, unknown> | undefined;
+  if (typeof found?.message === "string") return found.message;
+  for (const child of Object.values(found ?? {}))
+    if (typeof (child as { message?: unknown } | null)?.message === "string")
+      return String((child as { message: string }).message);
+  return undefined;
+};
+
+function startFrom(level: Level | null, effectiveFrom: string): Input {
+  if (!level)
+    return {
+      metric: { kind: "laeq" },
+      levelDb: null as unknown as number,
+      lcMinusLaDb: null,
+      octaveBandsDb: null,
+      lasMaxDb: null,
+      peak: null,
+      samplesDb: [],
+      instrument: null,
+      grade: "measured-group",
+      effectiveFrom,
+      sourceNote: "",
+      reason: null,
+    };
+  const { id: _, number: __, authorName: ___, createdAt: ____, ...facts } = level;
+  return { ...facts, effectiveFrom, reason: null };
+}
+
+function MetricField({ form }: { form: TaskLevelForm }) {
+  const { i18n } = useLingui();
+  const metric = form.watch("metric");
+  const choices = [
+    {
+      kind: "laeq",
+      label: i18n.t("LAeq, the energy mean"),
+      note: i18n.t("Under a 5 dB rule it can only prove Under."),
+    },
+    {
+      kind: "lavg",
+      label: i18n.t("LAVG, a mean under settings"),
+      note: i18n.t("Under a 3 dB rule it can only prove Over."),
+    },
+    {
+      kind: "steady",
+      label: i18n.t("Steady, read on slow"),
+      note: i18n.t("It hardly moves, and serves every rule."),
+    },
+  ] as const;
+  const put = (value: unknown) =>
+    form.setValue("metric", value as Input["metric"], { shouldDirty: true });
+  return (
+    <>
+      <Field
+        label={i18n.t("Metric")}
+        error={metric.kind === "lavg" ? undefined : messageAt(form, "metric")}
+        isGroup
+      >
+        {() =>
+          choices.map(({ kind, label, note }) => (
+            <label key={kind} className="choice">
+              <input
+                type="radio"
+                name="metric"
+                checked={metric.kind === kind}
+                onChange={() =>
+                  put(kind === "lavg" ? { kind, settings: COMMON_SETTINGS[0] } : { kind })
+                }
+              />
+              <span>
+                {label}
+                <span className="beneath block">{note}</span>
+              </span>
+            </label>
+          ))
+        }
+      </Field>
+      {metric.kind === "lavg" && (
+        <Field label={i18n.t("Settings")} error={messageAt(form, "metric.settings")}>
+          {(wires) => (
+            <SettingsInput
+              id={wires.id}
+              describedBy={wires["aria-describedby"]}
+              value={metric.settings as TypedSettings}
+              onValue={(settings) => put({ kind: "lavg", settings })}
+            />
+          )}
+        </Field>
+      )}
+    </>
+  );
+}
+
+function PeakField({ form }: { form: TaskLevelForm }) {
+  const { i18n } = useLingui();
+  const peak = form.watch("peak") ?? null;
+  const put = (value: unknown) =>
+    form.setValue("peak", value as Input["peak"], {
+      shouldDirty: true,
+      shouldValidate: form.formState.isSubmitted,
+    });
+  return (
+    <Field label={i18n.t("Peak")} unit="dB" isOptional error={messageAt(form, "peak")}>
+      {(wires) => (
+        <>
+          <NumberInput
+            id={wires.id}
+            aria-describedby={wires["aria-describedby"]}
+            aria-invalid={wires["aria-invalid"]}
+            value={peak?.levelDb ?? null}
+            onValue={(levelDb) =>
+              put(levelDb === null ? null : { levelDb, weighting: peak?.weighting ?? "C" })
+            }
+          />
+          <select
+            className="input"
+            aria-label={i18n.t("Weighting of the peak")}
+            disabled={peak === null}
+            value={peak?.weighting ?? "C"}
+            onChange={(event) => put({ ...peak, weighting: event.target.value })}
+          >
+            {["C", "Z", "A"].map((weighting) => (
+              <option key={weighting}>{weighting}</option>
+            ))}
+          </select>
+        </>
+      )}
+    </Field>
+  );
+}
+
+/**
+ * A task's noise from a date on, or the correction of what stood from that date: filled in, looked at with who changes
+ * verdict, then saved once for all the shifts it reaches.
+ */
+export function LevelForm({
+  task,
+  from,
+  effectiveFrom,
+  onLeave,
+  onSaved,
+}: {
+  task: Detail;
+  /** The level whose values the form starts with. */
+  from: Level | null;
+  effectiveFrom: string;
+  onLeave: () => void;
+  onSaved: () => void;
+}) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const client = useQueryClient();
+  const changeKey = useChangeKey();
+  const [reviewed, setReviewed] = useState<{
+    body: TaskLevelInput;
+    preview: z.infer<typeof ChangePreview>;
+  } | null>(null);
+  const form = useSchemaForm(TaskLevelInput, { defaultValues: startFrom(from, effectiveFrom) });
+  const show = showIssuesOn(form, i18n);
+  const isFirst = task.levels.length === 0;
+  const preview = useChangePreview(`/tasks/${task.id}/levels/preview`, show);
+  const save = useMutation({
+    mutationFn: (body: TaskLevelInput) =>
+      api.post(`/tasks/${task.id}/levels`, {
+        body,
+        schema: TaskDetail,
+        idempotencyKey: changeKey.keyFor(body),
+      }),
+    onSuccess: (view) => {
+      changeKey.forget();
+      client.setQueryData(taskQueries.one(view.id).queryKey, view);
+      void client.invalidateQueries({ queryKey: taskQueries.all });
+      void client.invalidateQueries({ queryKey: ["recompute-progress"] });
+      onSaved();
+    },
+    onError: (error) => {
+      if (error instanceof ApiError && error.issues.length > 0) setReviewed(null);
+      show(error);
+    },
+  });
+  const look = form.handleSubmit((body) => {
+    if (!isFirst && body.reason === null) {
+      form.setError(
+        "reason",
+        {
+          type: "reason-needed",
+          message: i18n.t("A reason is needed: what is there already changes."),
+        },
+        { shouldFocus: true },
+      );
+      return;
+    }
+    preview.mutate(body, { onSuccess: (found) => setReviewed({ body, preview: found }) });
+  });
+  return (
+    <>
+      <div hidden={reviewed !== null}>
+        <Form aria-label={i18n.t("Level")} onSubmit={look}>
+          <MetricField form={form} />
+          <NumberField
+            form={form}
+            name="levelDb"
+            label={i18n.t("Level")}
+            unit="dB(A)"
+            note={i18n.t("20 to 160.")}
+          />
+          <SelectField
+            form={form}
+            name="grade"
+            label={i18n.t("Grade")}
+            choices={GradeName.options
+              .filter((grade) => grade !== "measured-worker")
+              .map((grade) => ({ value: grade, label: gradeWord(i18n, grade) }))}
+          />
+          <NumberField
+            form={form}
+            name="lcMinusLaDb"
+            label={i18n.t("LC − LA")}
+            unit="dB"
+            isOptional
+            note={i18n.t("Where there is no spectrum; SNR and HML need it.")}
+          />
+          <BandFields
+            form={form}
+            name="octaveBandsDb"
+            label={i18n.t("Octave bands, dB")}
+            rows={[{ label: i18n.t("Octave band level") }]}
+            note={i18n.t(
+              "Unweighted. 63 Hz may stay empty. Eight values can be pasted into any cell.",
+            )}
+          />
+          <NumberField
+            form={form}
+            name="lasMaxDb"
+            label={i18n.t("Slow maximum, LASmax")}
+            unit="dB(A)"
+            isOptional
+          />
+          <PeakField form={form} />
+          <SamplesField form={form} />
+          <SelectField
+            form={form}
+            name="instrument"
+            label={i18n.t("Measured with")}
+            emptyLabel={i18n.t("Not stated")}
+            isOptional
+            choices={InstrumentClassName.options.map((instrument) => ({
+              value: instrument,
+              label: instrumentClassWord(i18n, instrument),
+            }))}
+          />
+          <TextAreaField
+            form={form}
+            name="sourceNote"
+            label={i18n.t("Where it comes from")}
+            rows={2}
+            isOptional
+          />
+          <DateField
+            form={form}
+            name="effectiveFrom"
+            label={i18n.t("Holds from")}
+            note={i18n.t(
+              "The date of a level that is there corrects that one; all its days are judged again.",
+            )}
+          />
+          {!isFirst && (
+            <TextAreaField form={form} name="reason" label={i18n.t("Reason")} rows={2} />
+          )}
+          <FormProblem error={preview.error} />
+          <FormActions>
+            <SubmitButton isBusy={preview.isPending}>
+              {i18n.t("See who changes verdict")}
+            </SubmitButton>
+            <Button onClick={onLeave}>{i18n.t("Leave as it was")}</Button>
+          </FormActions>
+        </Form>
+      </div>
+      {reviewed && (
+        <ChangeReview
+          preview={reviewed.preview}
+          what={i18n.t("{task}: {level} dB(A) from {date} on.", {
+            task: task.name,
+            level: formatLevel(reviewed.body.levelDb, locale),
+            date: formatDate(reviewed.body.effectiveFrom, locale),
+          })}
+          workerPath={paths.result}
+          isSaving={save.isPending}
+          error={save.error}
+          onSave={() => save.mutate(reviewed.body)}
+          onBack={() => setReviewed(null)}
+        />
+      )}
+    </>
+  );
+}

@@ -1,0 +1,33 @@
+import type { I18n } from "@lingui/core";
+import type { Gap } from "./queries";
+
+export function gapWord(i18n: I18n, kind: Gap): string {
+  switch (kind) {
+    case "not-measured":
+      return i18n.t("In noise but not measured");
+    case "no-protector":
+      return i18n.t("No protector where one is required");
+    case "notice-late":
+      return i18n.t("Notices late");
+    case "notice-not-sent":
+      return i18n.t("Notices not sent");
+    case "not-assessed":
+      return i18n.t("Days not assessed");
+  }
+}
+
+/** What is counted. */
+export function gapMeaning(i18n: I18n, kind: Gap): string {
+  switch (kind) {
+    case "not-measured":
+      return i18n.t("people over 80 dB by a task’s level or an estimate, with no run of their own");
+    case "no-protector":
+      return i18n.t("people whose finding is open");
+    case "notice-late":
+      return i18n.t("somebody was told after more than a day");
+    case "notice-not-sent":
+      return i18n.t("refused, held, overdue, or nobody knows");
+    case "not-assessed":
+      return i18n.t("no verdict on a line that the rules judge");
+  }
+}

@@ -1,0 +1,59 @@
+import { queryOptions } from "@tanstack/react-query";
+import type { z } from "zod";
+import { type GapKind, GapNames, GapsView } from "../../../shared/schemas/waiting";
+import { api, ApiError } from "../../lib/api";
+import { parseDictionary } from "./parse-dictionary";
+
+export type Gap = z.infer<typeof GapKind>;
+export type GapName = z.infer<typeof GapNames>["rows"][number];
+export type GapMonth = GapsView["months"][number];
+
+export interface YearOfSite {
+  readonly siteId: string;
+  readonly year: number;
+}
+
+const DICTIONARY = "/api/exports/year-dictionary.csv";
+
+export const yearFileQueries = {
+  gaps: ({ siteId, year }: YearOfSite) =>
+    queryOptions({
+      queryKey: ["year-file", "gaps", siteId, year],
+      queryFn: ({ signal }) =>
+        api.get("/exports/gaps", { query: { siteId, year }, schema: GapsView, signal }),
+    }),
+  names: ({ siteId, year }: YearOfSite, kind: Gap) =>
+    queryOptions({
+      queryKey: ["year-file", "names", siteId, year, kind],
+      queryFn: ({ signal }) =>
+        api.get("/exports/gap-names", { query: { siteId, year, kind }, schema: GapNames, signal }),
+      select: ({ rows }) => rows,
+    }),
+  dictionary: queryOptions({
+    queryKey: ["year-file", "dictionary"],
+    // The columns are the file's own: read from what goes out with it, not told a second time.
+    queryFn: async ({ signal }) => {
+      const response = await fetch(DICTIONARY, { signal, credentials: "same-origin" });
+      if (!response.ok)
+        throw new ApiError(response.status, `http-${response.status}`, {}, [], null, "");
+      return parseDictionary(await response.text());
+    },
+    staleTime: Number.POSITIVE_INFINITY,
+  }),
+};
+
+export function yearFileAddress({ siteId, year }: YearOfSite, workers: "number" | "name"): string {
+  return `/api/exports/year.csv?${new URLSearchParams({ siteId, year: String(year), workers })}`;
+}
+
+/** Hands both files to the browser, which asks where to put them and shows how far they are. */
+export function downloadYear(year: YearOfSite, workers: "number" | "name"): void {
+  for (const address of [yearFileAddress(year, workers), DICTIONARY]) {
+    const link = document.createElement("a");
+    link.href = address;
+    link.download = "";
+    document.body.append(link);
+    link.click();
+    link.remove();
+  }
+}

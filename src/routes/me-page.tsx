@@ -1,0 +1,118 @@
+import { useLingui } from "@lingui/react";
+import { useQuery } from "@tanstack/react-query";
+import type { ReactNode } from "react";
+import { localDateOf } from "../../shared/format/date";
+import { Empty } from "../components/empty";
+import { Failed } from "../components/failed";
+import { PageBody, Section } from "../components/page";
+import { LastShift } from "../features/me/last-shift";
+import { MyHistory } from "../features/me/my-history";
+import { MyProtectors } from "../features/me/my-protectors";
+import { protectorsToday } from "../features/me/own-protectors";
+import { ownQueries } from "../features/me/queries";
+import { ReportProblem } from "../features/me/report-problem";
+import { whatToDo } from "../features/me/what-to-do";
+import { useUser } from "../features/session/session";
+import { useLocale } from "../lib/i18n";
+import "../styles/me.css";
+
+/** A longer title is set smaller: a phone holds about three lines of the large one. */
+const LONG_TITLE = 64;
+
+/** The worker's own page: what to do, my protectors, my last shift, my year. */
+export function Component() {
+  const { i18n } = useLingui();
+  const { workerId } = useUser();
+  if (workerId === null)
+    return (
+      <PageBody size="worker">
+        <h1>{i18n.t("My page")}</h1>
+        <Empty title={i18n.t("Your sign-in is not linked to a worker.")}>
+          {i18n.t("Ask your administrator to link it.")}
+        </Empty>
+      </PageBody>
+    );
+  return <OwnPage workerId={workerId} />;
+}
+
+function OwnPage({ workerId }: { workerId: string }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const { sites } = useUser();
+  const worker = useQuery(ownQueries.worker(workerId));
+  const site = sites.find(({ id }) => id === worker.data?.siteId) ?? sites[0];
+  const today = localDateOf(new Date().toISOString(), site?.timeZone ?? "UTC");
+  const days = useQuery(ownQueries.days(workerId, aYearBefore(today)));
+  const lastDay = days.data?.[0] ?? null;
+
+  const error = worker.error ?? days.error;
+  const retry = () => {
+    void worker.refetch();
+    void days.refetch();
+  };
+  let title: ReactNode = <span className="loading-line" />;
+  let more: readonly string[] = [];
+  let isLong = false;
+  let protectors: ReturnType<typeof protectorsToday> | null = null;
+  if (worker.data && days.data) {
+    protectors = protectorsToday(worker.data, today, lastDay);
+    const [order, ...rest] = whatToDo(i18n, locale, {
+      lastDay,
+      protectors,
+      assignments: worker.data.assignments,
+    });
+    title = order;
+    more = rest;
+    isLong = order.length > LONG_TITLE;
+  }
+  const part = (content: ReactNode) => (worker.data && days.data ? content : <PartLoading />);
+
+  if (error)
+    return (
+      <PageBody size="worker">
+        <h1>{i18n.t("My page")}</h1>
+        <Failed error={error} onRetry={retry} />
+      </PageBody>
+    );
+  return (
+    <PageBody size="worker">
+      <div className="me" aria-busy={worker.isPending || days.isPending}>
+        <h1 className={isLong ? "is-long" : undefined}>{title}</h1>
+        {more.length > 0 && <p className="me-more">{more.join(" ")}</p>}
+        <Section title={i18n.t("My protectors")} id="my-protectors">
+          {part(<MyProtectors protectors={protectors ?? []} lastDay={lastDay} />)}
+        </Section>
+        <Section title={i18n.t("My last shift")} id="my-last-shift">
+          {part(<LastShift day={lastDay} />)}
+        </Section>
+        <Section title={i18n.t("My year at the ear")} id="my-year">
+          {part(
+            <MyHistory days={days.data ?? []} assignments={worker.data?.assignments ?? []} />,
+          )}
+        </Section>
+        <div className="me-report">
+          {worker.data?.can.report && <ReportProblem workerId={workerId} />}
+          <p className="me-note">
+            {i18n.t(
+              "A help for you, not a medical opinion. Seen by you, your supervisor and your safety officer.",
+            )}
+          </p>
+        </div>
+      </div>
+    </PageBody>
+  );
+}
+
+/** The same day a year ago; the 29th of February becomes the 1st of March. */
+function aYearBefore(date: string): string {
+  const [year, ...rest] = date.split("-");
+  return new Date(`${Number(year) - 1}-${rest.join("-")}T00:00:00Z`).toISOString().slice(0, 10);
+}
+
+function PartLoading() {
+  return (
+    <div aria-hidden="true">
+      <span className="loading-line" />
+    </div>
+  );
+}
