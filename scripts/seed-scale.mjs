@@ -19,10 +19,14 @@ async function demoEnvironment() {
       "The demo is not running: run  npm start  first, or set DATABASE_URL and OWNER_DATABASE_URL.",
     );
   }
-  const cluster = await openCluster({ folder: join(folder, "cluster"), durable: true, firstPort: 0 });
+  const cluster = await openCluster({
+    folder: join(folder, "cluster"),
+    durable: true,
+    firstPort: 0,
+  });
   return {
     DATABASE_URL: cluster.url("app", "dinward"),
-    OWNER_DATABASE_URL: cluster.url("owner", "dinward"),
+    OWNER_DATABASE_URL: cluster.url("super", "dinward"),
     DATA_DIR: join(folder, "app"),
   };
 }

@@ -1,5 +1,5 @@
 /**
- * npm run seed:scale -- --shifts=N
+ * npm run seed:scale -- --shifts=N [--days-a-worker=N]
  * Lays out an organization of its own with N shifts, their tasks, results and findings, by set-based SQL. The engine
  * computes each distinct day once; a day computed again by the application gives the very same result.
  */
@@ -14,6 +14,7 @@ import { ruleSetInForce } from "../shared/rule-sets";
 import { RESULT_COLUMNS, resultFacts } from "./commands/recompute-days";
 import { configOrExit } from "./config";
 
+/** Unless said otherwise: four years of working days. */
 const DAYS_A_WORKER = 1000;
 const CREW_OF = 12;
 const SHIFTS_AT_ONCE = 50_000;
@@ -31,21 +32,74 @@ const noise = [
 
 /** Tasks of a job, as places in `noise`, and the minutes in each. */
 const jobs: readonly (readonly [place: number, durationMin: number])[][] = [
-  [[0, 180], [3, 240], [5, 60]], [[1, 300], [4, 120], [5, 60]], [[2, 360], [5, 120]], [[3, 420], [5, 60]],
-  [[4, 420], [5, 60]], [[5, 480]], [[1, 120], [2, 240], [5, 120]], [[4, 240], [5, 240]],
+  [
+    [0, 180],
+    [3, 240],
+    [5, 60],
+  ],
+  [
+    [1, 300],
+    [4, 120],
+    [5, 60],
+  ],
+  [
+    [2, 360],
+    [5, 120],
+  ],
+  [
+    [3, 420],
+    [5, 60],
+  ],
+  [
+    [4, 420],
+    [5, 60],
+  ],
+  [[5, 480]],
+  [
+    [1, 120],
+    [2, 240],
+    [5, 120],
+  ],
+  [
+    [4, 240],
+    [5, 240],
+  ],
 ];
 /** A job in which something reaches this level has protectors. */
 const WEAR_FROM_DB = 85;
 
 const sites = [
-  { name: "North works", timeZone: "Europe/Berlin", governing: "eu-2003-10-ec", comparison: ["niosh-rel"], metric: { kind: "laeq" } },
-  { name: "South works", timeZone: "America/Chicago", governing: "us-general-industry", comparison: ["niosh-rel"], metric: { kind: "steady" } },
+  {
+    name: "North works",
+    timeZone: "Europe/Berlin",
+    governing: "eu-2003-10-ec",
+    comparison: ["niosh-rel"],
+    metric: { kind: "laeq" },
+  },
+  {
+    name: "South works",
+    timeZone: "America/Chicago",
+    governing: "us-general-industry",
+    comparison: ["niosh-rel"],
+    metric: { kind: "steady" },
+  },
 ] as const;
 
-const muffData = { usRatingDb: 25, snrDb: 29, hDb: 33, mDb: 27, lDb: 18, slc80Db: 24, bands: null, active: null };
+const muffData = {
+  usRatingDb: 20,
+  snrDb: 22,
+  hDb: 25,
+  mDb: 19,
+  lDb: 13,
+  slc80Db: 19,
+  bands: null,
+  active: null,
+};
 
 /** How far a day departs from the nominal one: minutes moved from the first task to the last, and wearing. */
-const variants = [0, 15, 30].flatMap((movedMin) => [100, 95].map((wornPct) => ({ movedMin, wornPct })));
+const variants = [0, 15, 30].flatMap((movedMin) =>
+  [100, 95].map((wornPct) => ({ movedMin, wornPct })),
+);
 
 interface Pattern {
   no: number;
@@ -68,7 +122,11 @@ interface LaidOut {
 const json = (value: unknown) => JSON.stringify(value);
 
 /** Every distinct day there is, through the engine. */
-function evaluatePatterns(laidOut: readonly LaidOut[], muff: ProtectorData, date: string): Pattern[] {
+function evaluatePatterns(
+  laidOut: readonly LaidOut[],
+  muff: ProtectorData,
+  date: string,
+): Pattern[] {
   const patterns: Pattern[] = [];
   sites.forEach((site, siteNo) => {
     const governing = ruleSetInForce(site.governing, date)!;
@@ -78,27 +136,79 @@ function evaluatePatterns(laidOut: readonly LaidOut[], muff: ProtectorData, date
       for (const isBare of [false, true]) {
         for (const { movedMin, wornPct } of variants) {
           const tasks = job.map(([place, durationMin], index): TimedTask => {
-            const moved = job.length === 1 ? 0 : index === 0 ? -movedMin : index === job.length - 1 ? movedMin : 0;
+            const moved =
+              job.length === 1
+                ? 0
+                : index === 0
+                  ? -movedMin
+                  : index === job.length - 1
+                    ? movedMin
+                    : 0;
             const { levelDb, lcMinusLaDb } = noise[place]!;
             const level: TaskLevel = {
-              revisionId: levelIds[place]!, metric: site.metric, levelDb, lcMinusLaDb, octaveBandsDb: null, lasMaxDb: null, peak: null, samplesDb: [],
-              instrument: null, grade: "task-level",
+              revisionId: levelIds[place]!,
+              metric: site.metric,
+              levelDb,
+              lcMinusLaDb,
+              octaveBandsDb: null,
+              lasMaxDb: null,
+              peak: null,
+              samplesDb: [],
+              instrument: null,
+              grade: "task-level",
             };
             const hasProtector = !isBare && needsProtector(jobNo);
             return {
-              id: `${place}`, taskId: taskIds[place]!, name: noise[place]!.name, durationMin: durationMin + moved, level, zone: "none",
-              protection: hasProtector ? { assignmentId: "a", inner: muff, outer: null, combinationBands: null, ownFitDb: null, activeCheckPassed: false } : null,
-              wornPct: hasProtector ? wornPct : null, wornIsShiftWide: false,
+              id: `${place}`,
+              taskId: taskIds[place]!,
+              name: noise[place]!.name,
+              durationMin: durationMin + moved,
+              level,
+              zone: "none",
+              protection: hasProtector
+                ? {
+                    assignmentId: "a",
+                    inner: muff,
+                    outer: null,
+                    combinationBands: null,
+                    ownFitDb: null,
+                    activeCheckPassed: false,
+                  }
+                : null,
+              wornPct: hasProtector ? wornPct : null,
+              wornIsShiftWide: false,
             };
           });
           const input: DayInput = {
-            workerId: "w", date, mustWear: false, personalTargetDb: null, site: { wearFromDb: WEAR_FROM_DB, creditsActivePart: false, usesUncertainty: false },
-            shifts: [{ id: "s", revisionId: "r", lengthMin: SHIFT_MIN, tasks, unaccounted: { how: "like-the-rest" }, readings: [] }],
+            workerId: "w",
+            date,
+            mustWear: false,
+            personalTargetDb: null,
+            site: { wearFromDb: WEAR_FROM_DB, creditsActivePart: false, usesUncertainty: false },
+            shifts: [
+              {
+                id: "s",
+                revisionId: "r",
+                lengthMin: SHIFT_MIN,
+                tasks,
+                unaccounted: { how: "like-the-rest" },
+                readings: [],
+              },
+            ],
           };
           const evaluation = evaluateDay(input, governing, comparison);
           patterns.push({
-            no: patterns.length, siteNo, jobNo, isBare, facts: resultFacts(input, evaluation, governing),
-            tasks: tasks.map(({ taskId, level, durationMin, wornPct: worn }) => ({ taskId, levelId: level!.revisionId!, durationMin, wornPct: worn })),
+            no: patterns.length,
+            siteNo,
+            jobNo,
+            isBare,
+            facts: resultFacts(input, evaluation, governing),
+            tasks: tasks.map(({ taskId, level, durationMin, wornPct: worn }) => ({
+              taskId,
+              levelId: level!.revisionId!,
+              durationMin,
+              wornPct: worn,
+            })),
             causes: findCauses(input, evaluation, governing),
           });
         }
@@ -108,32 +218,66 @@ function evaluatePatterns(laidOut: readonly LaidOut[], muff: ProtectorData, date
   return patterns;
 }
 
-const needsProtector = (jobNo: number) => jobs[jobNo]!.some(([place]) => noise[place]!.levelDb >= WEAR_FROM_DB);
+const needsProtector = (jobNo: number) =>
+  jobs[jobNo]!.some(([place]) => noise[place]!.levelDb >= WEAR_FROM_DB);
 
 async function layOutSites(db: pg.Client, organizationId: string): Promise<LaidOut[]> {
   const laidOut: LaidOut[] = [];
   for (const { name, timeZone, governing, comparison, metric } of sites) {
     const ids = (count: number) => Array.from({ length: count }, () => randomUUID());
-    const one: LaidOut = { siteId: randomUUID(), settingsId: randomUUID(), taskIds: ids(noise.length), levelIds: ids(noise.length), jobIds: ids(jobs.length) };
-    await db.query("INSERT INTO sites (id, organization_id, name, time_zone) VALUES ($1, $2, $3, $4)", [one.siteId, organizationId, name, timeZone]);
+    const one: LaidOut = {
+      siteId: randomUUID(),
+      settingsId: randomUUID(),
+      taskIds: ids(noise.length),
+      levelIds: ids(noise.length),
+      jobIds: ids(jobs.length),
+    };
+    await db.query(
+      "INSERT INTO sites (id, organization_id, name, time_zone) VALUES ($1, $2, $3, $4)",
+      [one.siteId, organizationId, name, timeZone],
+    );
     await db.query(
       "INSERT INTO site_settings (id, organization_id, site_id, number, effective_from, governing_rule_set, comparison_rule_sets, wear_from_db) VALUES ($1, $2, $3, 1, $4, $5, $6, $7)",
       [one.settingsId, organizationId, one.siteId, OLDEST, governing, comparison, WEAR_FROM_DB],
     );
     for (const [place, { name: taskName, levelDb, lcMinusLaDb }] of noise.entries()) {
-      await db.query("INSERT INTO tasks (id, organization_id, site_id, name) VALUES ($1, $2, $3, $4)", [one.taskIds[place], organizationId, one.siteId, taskName]);
+      await db.query(
+        "INSERT INTO tasks (id, organization_id, site_id, name) VALUES ($1, $2, $3, $4)",
+        [one.taskIds[place], organizationId, one.siteId, taskName],
+      );
       await db.query(
         "INSERT INTO task_levels (id, organization_id, task_id, number, effective_from, metric, level_db, lc_minus_la_db, grade) VALUES ($1, $2, $3, 1, $4, $5, $6, $7, 'task-level')",
-        [one.levelIds[place], organizationId, one.taskIds[place], OLDEST, metric, levelDb, lcMinusLaDb],
+        [
+          one.levelIds[place],
+          organizationId,
+          one.taskIds[place],
+          OLDEST,
+          metric,
+          levelDb,
+          lcMinusLaDb,
+        ],
       );
     }
     for (const [jobNo, job] of jobs.entries()) {
-      const jobName = job.map(([place]) => noise[place]!.name).join(", ");
-      await db.query("INSERT INTO jobs (id, organization_id, site_id, name) VALUES ($1, $2, $3, $4)", [one.jobIds[jobNo], organizationId, one.siteId, jobName]);
+      const jobName = `${jobNo + 1}: ${job.map(([place]) => noise[place]!.name).join(", ")}`;
+      await db.query(
+        "INSERT INTO jobs (id, organization_id, site_id, name) VALUES ($1, $2, $3, $4)",
+        [one.jobIds[jobNo], organizationId, one.siteId, jobName],
+      );
       await db.query(
         `INSERT INTO job_tasks (organization_id, job_id, task_id, position, duration_min)
          SELECT $1, $2, x."taskId", x.position, x."durationMin" FROM jsonb_to_recordset($3::jsonb) AS x("taskId" uuid, position int, "durationMin" float8)`,
-        [organizationId, one.jobIds[jobNo], json(job.map(([place, durationMin], position) => ({ taskId: one.taskIds[place], position, durationMin })))],
+        [
+          organizationId,
+          one.jobIds[jobNo],
+          json(
+            job.map(([place, durationMin], position) => ({
+              taskId: one.taskIds[place],
+              position,
+              durationMin,
+            })),
+          ),
+        ],
       );
     }
     laidOut.push(one);
@@ -141,10 +285,16 @@ async function layOutSites(db: pg.Client, organizationId: string): Promise<LaidO
   return laidOut;
 }
 
-async function layOutMuff(db: pg.Client, organizationId: string): Promise<ProtectorData & { revisionId: string }> {
+async function layOutMuff(
+  db: pg.Client,
+  organizationId: string,
+): Promise<ProtectorData & { revisionId: string }> {
   const [modelId, revisionId] = [randomUUID(), randomUUID()];
   const [name, kind] = ["Plain muff", "earmuff"] as const;
-  await db.query("INSERT INTO protector_models (id, organization_id, name, kind) VALUES ($1, $2, $3, $4)", [modelId, organizationId, name, kind]);
+  await db.query(
+    "INSERT INTO protector_models (id, organization_id, name, kind) VALUES ($1, $2, $3, $4)",
+    [modelId, organizationId, name, kind],
+  );
   await db.query(
     "INSERT INTO protector_model_revisions (id, organization_id, model_id, number, effective_from, data) VALUES ($1, $2, $3, 1, $4, $5)",
     [revisionId, organizationId, modelId, OLDEST, muffData],
@@ -153,8 +303,22 @@ async function layOutMuff(db: pg.Client, organizationId: string): Promise<Protec
 }
 
 /** Workers by number: every other one at the other site, jobs in turn, one of twenty in noise without a protector. */
-async function layOutWorkers(db: pg.Client, organizationId: string, laidOut: readonly LaidOut[], muffId: string, count: number): Promise<void> {
-  const places = laidOut.flatMap(({ siteId, jobIds }, siteNo) => jobIds.map((jobId, jobNo) => ({ siteNo, siteId, jobNo, jobId, needsProtector: needsProtector(jobNo) })));
+async function layOutWorkers(
+  db: pg.Client,
+  organizationId: string,
+  laidOut: readonly LaidOut[],
+  muffId: string,
+  count: number,
+): Promise<void> {
+  const places = laidOut.flatMap(({ siteId, jobIds }, siteNo) =>
+    jobIds.map((jobId, jobNo) => ({
+      siteNo,
+      siteId,
+      jobNo,
+      jobId,
+      needsProtector: needsProtector(jobNo),
+    })),
+  );
   await db.query(
     `CREATE TEMP TABLE scale_workers ON COMMIT PRESERVE ROWS AS
      SELECT n AS no, gen_random_uuid() AS id, gen_random_uuid() AS assignment_id, p."siteNo" AS site_no, p."siteId" AS site_id, p."jobNo" AS job_no, p."jobId" AS job_id,
@@ -164,8 +328,14 @@ async function layOutWorkers(db: pg.Client, organizationId: string, laidOut: rea
        ON p."siteNo" = n % 2 AND p."jobNo" = (n / 2) % ${jobs.length}`,
     [count, json(places)],
   );
-  await db.query("CREATE TEMP TABLE scale_crews AS SELECT g AS no, site_no, gen_random_uuid() AS id, site_id FROM (SELECT DISTINCT no / $1 / 2 AS g, site_no, site_id FROM scale_workers) x", [CREW_OF]);
-  await db.query("UPDATE scale_workers w SET crew_id = c.id FROM scale_crews c WHERE c.site_no = w.site_no AND c.no = w.no / $1 / 2", [CREW_OF]);
+  await db.query(
+    "CREATE TEMP TABLE scale_crews AS SELECT g AS no, site_no, gen_random_uuid() AS id, site_id FROM (SELECT DISTINCT no / $1 / 2 AS g, site_no, site_id FROM scale_workers) x",
+    [CREW_OF],
+  );
+  await db.query(
+    "UPDATE scale_workers w SET crew_id = c.id FROM scale_crews c WHERE c.site_no = w.site_no AND c.no = w.no / $1 / 2",
+    [CREW_OF],
+  );
   await db.query(
     `INSERT INTO workers (id, organization_id, site_id, job_id, employee_number, name, hired_on)
      SELECT id, $1, site_id, job_id, lpad(no::text, 6, '0'), 'Worker ' || lpad(no::text, 6, '0'), $2 FROM scale_workers`,
@@ -194,7 +364,11 @@ async function layOutUsers(db: pg.Client, organizationId: string): Promise<void>
        VALUES ($1, $2, $3, $4, CASE WHEN $3 = 'worker' THEN (SELECT id FROM scale_workers WHERE no = 0) END)`,
       [userId, organizationId, role, `${role}.${organizationId}@dinward.example`],
     );
-    await db.query("INSERT INTO role_grants (organization_id, user_id, role) VALUES ($1, $2, $3)", [organizationId, userId, role]);
+    await db.query("INSERT INTO role_grants (organization_id, user_id, role) VALUES ($1, $2, $3)", [
+      organizationId,
+      userId,
+      role,
+    ]);
     if (role === "supervisor") {
       await db.query(
         "INSERT INTO crew_supervisors (organization_id, crew_id, user_id, valid) SELECT $1, crew_id, $2, daterange($3::date, NULL) FROM scale_workers WHERE no = 0",
@@ -204,9 +378,16 @@ async function layOutUsers(db: pg.Client, organizationId: string): Promise<void>
   }
 }
 
-async function keepPatterns(db: pg.Client, patterns: readonly Pattern[], laidOut: readonly LaidOut[], muffRevisionId: string, date: string): Promise<void> {
+async function keepPatterns(
+  db: pg.Client,
+  patterns: readonly Pattern[],
+  laidOut: readonly LaidOut[],
+  muffRevisionId: string,
+  date: string,
+): Promise<void> {
   const members = Object.entries(RESULT_COLUMNS);
-  const comparison = (siteNo: number) => sites[siteNo]!.comparison.map((key) => [key, ruleSetInForce(key, date)!.version]);
+  const comparison = (siteNo: number) =>
+    sites[siteNo]!.comparison.map((key) => [key, ruleSetInForce(key, date)!.version]);
   // As the application writes what it digests: members in order, no spaces.
   const head = ({ siteNo, facts }: Pattern) =>
     `{"comparison":${json(comparison(siteNo))},"governing":${json([facts.ruleSetKey, facts.ruleSetVersion])},"mustWear":false,"settingsId":"${laidOut[siteNo]!.settingsId}","shifts":[{"revisionId":"`;
@@ -214,25 +395,57 @@ async function keepPatterns(db: pg.Client, patterns: readonly Pattern[], laidOut
     `CREATE TEMP TABLE scale_patterns AS SELECT p.*, ${members.map(([column, [member]]) => `f."${member}" AS ${column}`).join(", ")}
      FROM jsonb_to_recordset($1::jsonb) AS p(no int, "siteNo" int, "jobNo" int, "isBare" boolean, variant int, head text, facts jsonb),
        jsonb_to_record(p.facts) AS f(${members.map(([, [member, type]]) => `"${member}" ${type}`).join(", ")})`,
-    [json(patterns.map((pattern) => ({ ...pattern, variant: pattern.no % variants.length, head: head(pattern), tasks: undefined, causes: undefined })))],
+    [
+      json(
+        patterns.map((pattern) => ({
+          ...pattern,
+          variant: pattern.no % variants.length,
+          head: head(pattern),
+          tasks: undefined,
+          causes: undefined,
+        })),
+      ),
+    ],
   );
   await db.query(
     `CREATE TEMP TABLE scale_pattern_tasks AS SELECT * FROM jsonb_to_recordset($1::jsonb)
        AS x(pattern int, position int, "taskId" uuid, "levelId" uuid, "durationMin" float8, "wornPct" float8)`,
-    [json(patterns.flatMap(({ no, tasks }) => tasks.map((task, position) => ({ pattern: no, position, ...task }))))],
+    [
+      json(
+        patterns.flatMap(({ no, tasks }) =>
+          tasks.map((task, position) => ({ pattern: no, position, ...task })),
+        ),
+      ),
+    ],
   );
   await db.query(
     `CREATE TEMP TABLE scale_causes AS SELECT * FROM jsonb_to_recordset($1::jsonb)
        AS x(pattern int, kind text, concerns text, criterion text, "useKey" text, facts jsonb)`,
-    [json(patterns.flatMap(({ no, causes }) => causes.map((cause) => ({ pattern: no, ...cause }))))],
+    [
+      json(
+        patterns.flatMap(({ no, causes }) => causes.map((cause) => ({ pattern: no, ...cause }))),
+      ),
+    ],
   );
-  await db.query("CREATE TEMP TABLE scale_muff AS SELECT $1::uuid AS revision_id", [muffRevisionId]);
-  await db.query("CREATE TEMP TABLE scale_findings (id uuid, worker_id uuid, job_id uuid, kind text, criterion text, use_key text, UNIQUE NULLS NOT DISTINCT (worker_id, job_id, kind, criterion, use_key))");
-  await db.query("ANALYZE scale_patterns; ANALYZE scale_pattern_tasks; ANALYZE scale_causes; ANALYZE scale_workers");
+  await db.query("CREATE TEMP TABLE scale_muff AS SELECT $1::uuid AS revision_id", [
+    muffRevisionId,
+  ]);
+  await db.query(
+    "CREATE TEMP TABLE scale_findings (id uuid, worker_id uuid, job_id uuid, kind text, criterion text, use_key text, UNIQUE NULLS NOT DISTINCT (worker_id, job_id, kind, criterion, use_key))",
+  );
+  await db.query(
+    "ANALYZE scale_patterns; ANALYZE scale_pattern_tasks; ANALYZE scale_causes; ANALYZE scale_workers",
+  );
 }
 
 /** Shifts of some workers, with everything that hangs on them; returns the rows written. */
-async function layOutShifts(db: pg.Client, organizationId: string, from: number, to: number, shiftsLeft: number): Promise<{ shifts: number; rows: number }> {
+async function layOutShifts(
+  db: pg.Client,
+  organizationId: string,
+  from: number,
+  to: number,
+  shiftsLeft: number,
+): Promise<{ shifts: number; rows: number }> {
   let rows = 0;
   const write = async (text: string) => {
     rows += (await db.query(text)).rowCount ?? 0;
@@ -284,16 +497,24 @@ async function layOutShifts(db: pg.Client, organizationId: string, from: number,
   );
   await layOutFindings(organizationId, write);
   await db.query("COMMIT");
-  const { rows: counted } = await db.query<{ count: number }>("SELECT count(*)::int AS count FROM scale_shifts");
+  const { rows: counted } = await db.query<{ count: number }>(
+    "SELECT count(*)::int AS count FROM scale_shifts",
+  );
   return { shifts: counted[0]!.count, rows };
 }
 
 /** One open finding a cause, with every day that shows it. */
-async function layOutFindings(organizationId: string, write: (text: string) => Promise<void>): Promise<void> {
+async function layOutFindings(
+  organizationId: string,
+  write: (text: string) => Promise<void>,
+): Promise<void> {
   const seen = `SELECT s.*, c.kind, c.criterion, c."useKey" AS use_key, c.facts, CASE WHEN c.concerns = 'worker' THEN s.worker_id END AS of_worker,
       CASE WHEN c.concerns = 'job' THEN s.job_id END AS of_job FROM scale_shifts s JOIN scale_causes c ON c.pattern = s.pattern`;
-  await write(`INSERT INTO scale_findings SELECT gen_random_uuid(), x.* FROM (SELECT DISTINCT of_worker, of_job, kind, criterion, use_key FROM (${seen}) q) x ON CONFLICT DO NOTHING`);
-  const cause = "f.kind = q.kind AND f.criterion = q.criterion AND f.use_key = q.use_key AND f.worker_id IS NOT DISTINCT FROM q.of_worker AND f.job_id IS NOT DISTINCT FROM q.of_job";
+  await write(
+    `INSERT INTO scale_findings SELECT gen_random_uuid(), x.* FROM (SELECT DISTINCT of_worker, of_job, kind, criterion, use_key FROM (${seen}) q) x ON CONFLICT DO NOTHING`,
+  );
+  const cause =
+    "f.kind = q.kind AND f.criterion = q.criterion AND f.use_key = q.use_key AND f.worker_id IS NOT DISTINCT FROM q.of_worker AND f.job_id IS NOT DISTINCT FROM q.of_job";
   await write(
     `INSERT INTO findings (id, organization_id, site_id, worker_id, job_id, kind, criterion, use_key, state, facts, first_date, last_date, last_result_id, days_count, due_on)
      SELECT f.id, '${organizationId}', min(q.site_id::text)::uuid, f.worker_id, f.job_id, f.kind, f.criterion, f.use_key, 'new', (array_agg(q.facts ORDER BY q.date DESC))[1], min(q.date),
@@ -307,16 +528,21 @@ async function layOutFindings(organizationId: string, write: (text: string) => P
   );
 }
 
-async function seedScale(db: pg.Client, shiftsWanted: number): Promise<void> {
+async function seedScale(db: pg.Client, shiftsWanted: number, daysAWorker: number): Promise<void> {
   const organizationId = randomUUID();
   const today = new Date().toISOString().slice(0, 10);
-  const workers = Math.max(2 * CREW_OF, Math.ceil(shiftsWanted / DAYS_A_WORKER));
+  const workers = Math.max(2 * CREW_OF, Math.ceil(shiftsWanted / daysAWorker));
   const began = performance.now();
-  await db.query("INSERT INTO organizations (id, name) VALUES ($1, $2)", [organizationId, `Scale data: ${shiftsWanted} shifts (${organizationId.slice(0, 8)})`]);
+  await db.query("BEGIN");
+  await db.query("INSERT INTO organizations (id, name) VALUES ($1, $2)", [
+    organizationId,
+    `Scale data: ${shiftsWanted} shifts (${organizationId.slice(0, 8)})`,
+  ]);
   const laidOut = await layOutSites(db, organizationId);
   const muff = await layOutMuff(db, organizationId);
   await layOutWorkers(db, organizationId, laidOut, muff.modelId, workers);
   await layOutUsers(db, organizationId);
+  await db.query("COMMIT");
   await keepPatterns(db, evaluatePatterns(laidOut, muff, today), laidOut, muff.revisionId, today);
   await db.query(
     `CREATE TEMP TABLE scale_dates AS SELECT row_number() OVER (ORDER BY d DESC)::int AS no, d::date AS date
@@ -326,26 +552,57 @@ async function seedScale(db: pg.Client, shiftsWanted: number): Promise<void> {
   let [shifts, rows] = [0, 0];
   const step = Math.max(1, Math.floor((SHIFTS_AT_ONCE * workers) / shiftsWanted));
   for (let from = 0; from < workers && shifts < shiftsWanted; from += step) {
-    const done = await layOutShifts(db, organizationId, from, Math.min(workers, from + step), shiftsWanted - shifts);
+    const done = await layOutShifts(
+      db,
+      organizationId,
+      from,
+      Math.min(workers, from + step),
+      shiftsWanted - shifts,
+    );
     shifts += done.shifts;
     rows += done.rows;
     const seconds = (performance.now() - began) / 1000;
-    console.log(`${shifts} of ${shiftsWanted} shifts, ${rows} rows, ${Math.round(rows / seconds)} rows/s`);
+    console.log(
+      `${shifts} of ${shiftsWanted} shifts, ${rows} rows, ${Math.round(rows / seconds)} rows/s`,
+    );
   }
   await db.query("ANALYZE");
-  console.log(`Scale data are laid out: organization ${organizationId}, ${workers} workers, ${((performance.now() - began) / 1000).toFixed(1)} s.`);
+  console.log(
+    `Scale data are laid out: organization ${organizationId}, ${workers} workers, ${((performance.now() - began) / 1000).toFixed(1)} s.`,
+  );
 }
 
-const { values } = parseArgs({ options: { shifts: { type: "string", default: "100000" } } });
+const { values } = parseArgs({
+  options: {
+    shifts: { type: "string", default: "100000" },
+    "days-a-worker": { type: "string", default: String(DAYS_A_WORKER) },
+  },
+});
 const shiftsWanted = Number(values.shifts);
+const daysAWorker = Number(values["days-a-worker"]);
 if (!Number.isInteger(shiftsWanted) || shiftsWanted < 1 || shiftsWanted > 10_000_000) {
   console.error("--shifts is a whole number from 1 to 10000000");
   process.exit(1);
 }
-const db = new pg.Client({ connectionString: configOrExit("owner").OWNER_DATABASE_URL, application_name: "dinward seed-scale" });
+if (!Number.isInteger(daysAWorker) || daysAWorker < 1 || daysAWorker > 10_000) {
+  console.error("--days-a-worker is a whole number from 1 to 10000");
+  process.exit(1);
+}
+const db = new pg.Client({
+  connectionString: configOrExit("owner").OWNER_DATABASE_URL,
+  application_name: "dinward seed-scale",
+});
 await db.connect();
 try {
-  await seedScale(db, shiftsWanted);
+  // Row by row, foreign keys cost most of the time, and what is laid out here keeps them by how it is made. Only a
+  // superuser, as the demo's and the benchmark's own cluster has one, can leave them out.
+  await db.query(
+    "SELECT set_config('session_replication_role', 'replica', false) FROM pg_roles WHERE rolname = current_user AND rolsuper",
+  );
+  await db.query(
+    "SELECT set_config('default_toast_compression', 'lz4', false) FROM pg_settings WHERE name = 'default_toast_compression' AND 'lz4' = ANY (enumvals)",
+  );
+  await seedScale(db, shiftsWanted, daysAWorker);
 } finally {
   await db.end();
 }

@@ -14,6 +14,9 @@ export interface Chapter {
   steps?: readonly Step[];
 }
 
+/** Working days before today, or after the first day of the demo. */
+export type Day = number | { readonly in: number };
+
 /** A shift that was not as usual. */
 export interface Departure {
   worker: string;
@@ -70,19 +73,19 @@ export type Deed =
 export type Step = Deed & {
   /** On whose calendar the day counts. */
   crew: string;
-  day: number;
+  day: Day;
   at: string;
   /** Who does it, as in the list of people. */
   by: string;
 };
 
-const step = (crew: string, by: string, day: number, at: string, deed: Deed): Step => ({ ...deed, crew, by, day, at });
-const fettling = (day: number, at: string, deed: Deed, by = "s.ferrand") => step("Fettling days", by, day, at, deed);
-const lates = (day: number, at: string, deed: Deed, by = "s.ferrand") => step("Fettling lates", by, day, at, deed);
-const cell = (day: number, at: string, deed: Deed, by = "s.ferrand") => step("Test cell days", by, day, at, deed);
-const nights = (day: number, at: string, deed: Deed, by = "s.ferrand") => step("Test cell nights", by, day, at, deed);
-const plate = (day: number, at: string, deed: Deed, by = "d.calloway") => step("Plate shop days", by, day, at, deed);
-const stores = (day: number, at: string, deed: Deed, by = "d.calloway") => step("Compressor and stores", by, day, at, deed);
+const step = (crew: string, by: string, day: Day, at: string, deed: Deed): Step => ({ ...deed, crew, by, day, at });
+const fettling = (day: Day, at: string, deed: Deed, by = "s.ferrand") => step("Fettling days", by, day, at, deed);
+const lates = (day: Day, at: string, deed: Deed, by = "s.ferrand") => step("Fettling lates", by, day, at, deed);
+const cell = (day: Day, at: string, deed: Deed, by = "s.ferrand") => step("Test cell days", by, day, at, deed);
+const nights = (day: Day, at: string, deed: Deed, by = "s.ferrand") => step("Test cell nights", by, day, at, deed);
+const plate = (day: Day, at: string, deed: Deed, by = "d.calloway") => step("Plate shop days", by, day, at, deed);
+const stores = (day: Day, at: string, deed: Deed, by = "d.calloway") => step("Compressor and stores", by, day, at, deed);
 
 /** A dosimeter at Ostmere: one energy mean with its C-weighted peak. */
 const energyRun = (averageDb: number, peakDb: number, instrument = "Dosimeter, green band"): DemoRun => ({
@@ -109,7 +112,7 @@ export const STORY: readonly Chapter[] = [
     departures: [{ worker: "4417", day: 1, minutes: { Grinding: 150, Chipping: 120, Linishing: 110, Break: 30 }, note: "Muff away for cleaning, Sedge band from the box." }],
     steps: [
       fettling(1, "05:50", { assign: { workers: ["4417"], inner: "Sedge band" } }),
-      fettling(1, "16:10", { finding: { worker: "4417", kind: "over-limit-at-ear" }, step: { kind: "take-in-hand", dueInDays: 1 } }),
+      fettling(0, "08:20", { finding: { worker: "4417", kind: "over-limit-at-ear" }, step: { kind: "take-in-hand", dueInDays: 1 } }),
     ],
   },
   {
@@ -144,6 +147,7 @@ export const STORY: readonly Chapter[] = [
       cell(28, "11:00", { finding: { worker: "3318", kind: "protects-too-little" }, step: { kind: "take-in-hand", dueInDays: 60 } }),
       cell(28, "11:05", { finding: { worker: "3318", kind: "protects-too-little" }, step: { kind: "comment", text: "With the active part on 78 at the ear in Run-up. It counts once the check of the active part on the worker is passed; until then 93 stands." } }),
       nights(16, "18:30", { assign: { workers: ["3982"], inner: "Tern active" } }),
+      nights(14, "11:10", { finding: { worker: "3982", kind: "protects-too-little" }, step: { kind: "take-in-hand", dueInDays: 45 } }),
     ],
   },
   {
@@ -257,14 +261,16 @@ export const STORY: readonly Chapter[] = [
   {
     title: "Hammer hands over the limit without protection: controls are owed, and on their way",
     steps: ["2875", "2877", "2880", "2884"].flatMap((worker) => [
+      plate({ in: 1 }, "10:00", { finding: { worker, kind: "over-limit-outside", criterion: "us-general-industry:limit" }, step: { kind: "take-in-hand", dueInDays: 90 } }),
+      plate(39, "14:20", { finding: { worker, kind: "over-limit-outside", criterion: "us-general-industry:limit" }, step: { kind: "mark-done", text: "Two hands take turns at the hammer." } }, "s.okonedo"),
       plate(38, "10:00", { finding: { worker, kind: "over-limit-outside", criterion: "us-general-industry:limit" }, step: { kind: "take-in-hand", dueInDays: 120 } }),
-      plate(38, "10:05", { finding: { worker, kind: "over-limit-outside", criterion: "us-general-industry:limit" }, step: { kind: "comment", text: "Damped bench ordered for the hammer bay; until it stands, two hands take turns." } }),
+      plate(38, "10:05", { finding: { worker, kind: "over-limit-outside", criterion: "us-general-industry:limit" }, step: { kind: "comment", text: "Turns are not enough: still over. A damped bench for the hammer bay is ordered." } }),
     ]),
   },
   {
     title: "Forklift drivers: only an energy mean, which can't prove a 5 dB dose",
     steps: [
-      stores(37, "11:00", { finding: { job: "Forklift driver", kind: "reading-missing" }, step: { kind: "take-in-hand", dueInDays: 75 } }),
+      stores({ in: 2 }, "11:00", { finding: { job: "Forklift driver", kind: "reading-missing" }, step: { kind: "take-in-hand", dueInDays: 600 } }),
       stores(37, "11:05", { finding: { job: "Forklift driver", kind: "reading-missing" }, step: { kind: "comment", text: "A run with threshold 80 on both drivers as soon as the red dosimeter is back from the plate shop." } }),
     ],
   },
@@ -296,10 +302,6 @@ export const STORY: readonly Chapter[] = [
   },
 
   // Longer ago.
-  {
-    title: "L. Ferreira-Quist worked two nights with no protector after the first box ran out",
-    steps: [],
-  },
   {
     title: "A new extraction hood at the linishers: the task was measured again",
     steps: [fettling(110, "15:00", { taskLevel: { task: "Linishing", levelDb: 95.9, samplesDb: [95.5, 96.6, 95.5], reason: "New extraction hood, measured again" } })],

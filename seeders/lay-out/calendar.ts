@@ -40,6 +40,15 @@ export class SiteCalendar {
     return null;
   }
 
+  /** The working day of a crew so many after the first of the demo. */
+  workdayIn(crew: Pick<DemoCrew, "pattern">, count: number): string {
+    let date = this.first;
+    for (let left = count; !this.works(crew, date) || left > 0; date = addDays(date, 1)) {
+      if (this.works(crew, date)) left -= 1;
+    }
+    return date;
+  }
+
   /** The instant of a time on the site's clock; a time that the clock skips is taken an hour later. */
   instant(date: string, time: string): Date {
     const local = atLocalTime(date, time, this.timeZone);

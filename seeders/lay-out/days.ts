@@ -14,25 +14,30 @@ import type { DemoRun } from "../demo/story";
 import type { Demo } from "./programme";
 import { known } from "./programme";
 import { type PlannedDay, type PlannedShift, planDay } from "./shifts";
+import { daysBetween } from "./calendar";
 import type { DatedStory } from "./story";
 
 const RECOMPUTED_AT_ONCE = 500;
 /** Of the crew that is being entered while the demo is filled: how many rows still wait. */
 const ROWS_THAT_WAIT = 2;
 
-/** Writes a site's date as its officer would have: shifts, absences, runs. Computing them comes later, in larger steps. */
-export async function storeDay(demo: Demo, story: DatedStory, site: SiteKey, date: string): Promise<DayKey[]> {
-  const plan = planDay(demo, story, site, date);
-  if (plan.shifts.length === 0 && plan.absent.length === 0) return [];
+/**
+ * Writes dates of a site as its officer would have: shifts, absences, runs. Today and yesterday have a way of their own.
+ * Gives the days that are to be computed.
+ */
+export async function storeDays(demo: Demo, story: DatedStory, site: SiteKey, dates: readonly string[], at: Date): Promise<DayKey[]> {
+  const { today } = demo.calendar(site);
+  const plans = dates.filter((date) => daysBetween(date, today) > 1).map((date) => planDay(demo, story, site, date));
+  const shifts = plans.flatMap((plan) => plan.shifts);
+  if (shifts.length === 0) return [];
   const actor = demo.officer(site);
-  const calendar = demo.calendar(site);
-  return demo.at(calendar.instant(date, "22:20"), async () => {
-    const ids = await storeShifts(actor, randomUUID(), plan.shifts.map((shift) => toChecked(demo, shift)));
-    await storeAbsences(demo, site, date, plan);
-    for (const [index, shift] of plan.shifts.entries()) {
+  return demo.at(at, async () => {
+    const ids = await storeShifts(actor, randomUUID(), shifts.map((shift) => toChecked(demo, shift)));
+    await storeAbsences(demo, site, plans.flatMap(({ absent }) => absent));
+    for (const [index, shift] of shifts.entries()) {
       if (shift.run) await recordRun(actor, known(demo.sites, site).id, toRun(demo, shift, shift.run, ids[index] ?? null));
     }
-    return plan.shifts.map(({ workerId }) => ({ workerId, date }));
+    return shifts.map(({ workerId, date }) => ({ workerId, date }));
   });
 }
 
@@ -53,15 +58,15 @@ function toRun(demo: Demo, { workerId, date, lengthMin }: PlannedShift, run: Dem
   });
 }
 
-async function storeAbsences(demo: Demo, site: SiteKey, date: string, { absent }: PlannedDay): Promise<void> {
+async function storeAbsences(demo: Demo, site: SiteKey, absent: PlannedDay["absent"]): Promise<void> {
   const actor = demo.officer(site);
-  const records = absent.map(({ workerId, crew }) => ({ workerId, crewId: known(demo.crews, crew.name).id }));
+  const records = absent.map(({ workerId, date, crew }) => ({ workerId, date, crewId: known(demo.crews, crew.name).id }));
   await execute(
     `INSERT INTO absences (organization_id, worker_id, date, crew_id, recorded_by)
-     SELECT $1, x."workerId", $3::date, x."crewId", $4 FROM jsonb_to_recordset($2::jsonb) AS x("workerId" uuid, "crewId" uuid)`,
-    [demo.organizationId, JSON.stringify(records), date, actor.userId],
+     SELECT $1, x."workerId", x.date, x."crewId", $3 FROM jsonb_to_recordset($2::jsonb) AS x("workerId" uuid, date date, "crewId" uuid)`,
+    [demo.organizationId, JSON.stringify(records), actor.userId],
   );
-  await recordAuditMany(actor, records.map(({ workerId }) => ({ action: "record-absence", subjectKind: "worker", subjectId: workerId, values: { date } })));
+  await recordAuditMany(actor, records.map(({ workerId, date }) => ({ action: "record-absence", subjectKind: "worker", subjectId: workerId, values: { date } })));
 }
 
 /** Computes days and gives what was opened, in steps that each are a transaction. */
@@ -85,6 +90,8 @@ export const staleDays = (demo: Demo): Promise<DayKey[]> =>
 export async function enterDay(demo: Demo, story: DatedStory, site: SiteKey, date: string, now: Date): Promise<void> {
   const calendar = demo.calendar(site);
   const isToday = date === calendar.today;
+  // Where it is still yesterday's evening, the date of another site has not begun.
+  if (daysBetween(date, calendar.today) > 1 || date > calendar.today) return;
   const plan = planDay(demo, story, site, date);
   for (const [crewName, ofCrew] of groupBy(plan.shifts, ({ crew }) => crew.name)) {
     if (isToday && crewName !== CREWS[0]!.name) continue;

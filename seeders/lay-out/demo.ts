@@ -1,19 +1,23 @@
+import { randomUUID } from "node:crypto";
 import type { DayKey } from "../../server/queries/day-inputs";
-import { rows } from "../../server/lib/db";
+import { recordAudit } from "../../server/lib/audit";
+import { execute, rows } from "../../server/lib/db";
 import { addDays } from "../../shared/time/zone";
 import { PEOPLE } from "../demo/people";
-import { ORGANIZATION, SITES, type SiteKey } from "../demo/programme";
+import { INSTRUMENTS, ORGANIZATION, SITES, type SiteKey } from "../demo/programme";
 import { daysBetween } from "./calendar";
-import { computeDays, enterDay, staleDays, storeDay } from "./days";
+import { computeDays, enterDay, staleDays, storeDays } from "./days";
 import { markSent, tellInThePast } from "./notices";
 import { writePeopleFile } from "./people-file";
-import { Demo, layOutProgramme } from "./programme";
-import { comesFirst, takeStep } from "./steps";
+import { Demo, known, layOutProgramme } from "./programme";
+import { takeStep } from "./steps";
 import { dateStory } from "./story";
 
 const DAYS_A_MONTH = 30.4;
-/** Further back than this, days are computed a week at a time. */
+/** Further back than this, days are entered and computed a week at a time. */
 const DAILY_FROM_DAYS_AGO = 21;
+const FRIDAY = 5;
+const CALIBRATION_SOON_DAYS = 7;
 
 export interface Filling {
   months: number;
@@ -25,8 +29,8 @@ export interface Filling {
 const siteKeys = Object.keys(SITES) as SiteKey[];
 
 /**
- * Fills an empty database with the demo, in order of time: each day's changes to the programme, its shifts, what they
- * show, and what people did about it.
+ * Fills an empty database with the demo, in order of time: each day's changes to the programme, what people did about
+ * what the days before had shown, then the day's own shifts.
  *
  * @returns a summary to print
  */
@@ -34,35 +38,58 @@ export async function layOutDemo({ months, now, dataFolder, publicUrl }: Filling
   const demo = new Demo(now, Math.round(months * DAYS_A_MONTH));
   await layOutProgramme(demo);
   const story = dateStory(demo);
+  const clock = demo.calendar("ostmere");
+  const morningOf = (date: string) => new Date(Math.min(clock.instant(date, "08:30").getTime(), now.getTime() - 120_000));
+  const compute = async (keys: readonly DayKey[], at: Date) => tellInThePast(demo, await computeDays(demo, keys, at), at, publicUrl);
 
-  let pending: DayKey[] = [];
+  let unstored: string[] = [];
+  const storeUp = async (at: Date) => {
+    for (const site of siteKeys) await compute(await storeDays(demo, story, site, unstored, at), at);
+    unstored = [];
+  };
   const first = siteKeys.map((site) => demo.calendar(site).first).sort()[0]!;
   const last = siteKeys.map((site) => demo.calendar(site).today).sort().at(-1)!;
   for (let date = first; date <= last; date = addDays(date, 1)) {
     const steps = story.steps.filter((step) => step.date === date);
-    for (const step of steps.filter(comesFirst)) await takeStep(demo, step, now);
-    for (const site of siteKeys) {
-      const calendar = demo.calendar(site);
-      const ago = daysBetween(date, calendar.today);
-      if (ago > 1) { const t0=Date.now(); pending.push(...(await storeDay(demo, story, site, date))); (globalThis as any).tStore=((globalThis as any).tStore??0)+Date.now()-t0; }
-      else if (ago >= 0) await enterDay(demo, story, site, date, now);
-    }
-    const later = steps.filter((step) => !comesFirst(step));
-    const isWeekEnd = new Date(`${date}T00:00:00Z`).getUTCDay() === 0;
-    if (later.length === 0 && !isWeekEnd && daysBetween(date, last) > DAILY_FROM_DAYS_AGO) continue;
-    const eveningOf = () => new Date(Math.min(demo.calendar("ostmere").instant(date, "23:30").getTime(), now.getTime() - 60_000));
-    const compute = async (keys: readonly DayKey[]) => { const t0=Date.now(); const o=await computeDays(demo, keys, eveningOf()); const t1=Date.now(); await tellInThePast(demo, o, eveningOf(), publicUrl); (globalThis as any).tC=((globalThis as any).tC??0)+t1-t0;(globalThis as any).tT=((globalThis as any).tT??0)+Date.now()-t1; };
-    await compute(pending);
-    pending = [];
-    for (const step of later) {
+    if (steps.length > 0) await storeUp(morningOf(date));
+    for (const step of steps) {
       await takeStep(demo, step, now);
-      await compute(await staleDays(demo));
+      const at = new Date(Math.min(demo.calendar(step.site).instant(date, step.at).getTime(), now.getTime()) + 1_000);
+      await compute(await staleDays(demo), at);
     }
+    if (daysBetween(date, last) > 1) {
+      unstored.push(date);
+      const isDue = new Date(`${date}T00:00:00Z`).getUTCDay() === FRIDAY || daysBetween(date, last) <= DAILY_FROM_DAYS_AGO;
+      if (isDue) await storeUp(morningOf(addDays(date, 1)));
+      continue;
+    }
+    for (const site of siteKeys) await enterDay(demo, story, site, date, now);
   }
+  await tellOfCalibration(demo);
   await markSent(demo, now, publicUrl);
-  console.log((globalThis as any).tStore,(globalThis as any).tC,(globalThis as any).tT);
   const file = writePeopleFile(demo, dataFolder);
   return summarize(demo, file);
+}
+
+/** Whose laboratory calibration is due soon becomes a finding: the officer has to book it. */
+async function tellOfCalibration(demo: Demo): Promise<void> {
+  for (const { site, name, calibrationDueInDays } of INSTRUMENTS) {
+    if (calibrationDueInDays > CALIBRATION_SOON_DAYS) continue;
+    const { today } = demo.calendar(site);
+    const instrument = known(demo.instruments, name);
+    const id = randomUUID();
+    await demo.at(demo.calendar(site).instant(today, "00:05"), async () => {
+      await execute(
+        `INSERT INTO findings (id, organization_id, site_id, instrument_id, kind, state, facts, first_date, last_date, days_count, due_on)
+         VALUES ($1, $2, $3, $4, 'instrument', 'new', $5::jsonb, $6, $6, 0, $7)`,
+        [id, demo.organizationId, instrument.siteId, instrument.id, JSON.stringify({ calibrationDueOn: instrument.calibrationDueOn }), today, instrument.calibrationDueOn],
+      );
+      await execute("INSERT INTO finding_steps (organization_id, finding_id, kind, to_state) VALUES ($1, $2, 'state', 'new')", [demo.organizationId, id]);
+      await recordAudit({ organizationId: demo.organizationId }, {
+        action: "open-finding", subjectKind: "finding", subjectId: id, values: { kind: "instrument", calibrationDueOn: instrument.calibrationDueOn },
+      });
+    });
+  }
 }
 
 async function summarize(demo: Demo, file: string): Promise<string> {

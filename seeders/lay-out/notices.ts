@@ -10,10 +10,10 @@ import { known } from "./programme";
 
 const MINUTE_MS = 60_000;
 
-/** One notice that never arrived, and one that left two days late; both by whom and what they were about. */
+/** A notice that never arrived, and what left two days late: to whom, and about what. */
 const TROUBLED = {
   failed: { sub: "s.okonedo", kind: "peak-or-ceiling", error: "550 5.1.1 no mailbox of that name" },
-  late: { sub: "p.lanyon", kind: "over-limit-at-ear", byMin: 2 * 24 * 60 },
+  late: { sub: "p.lanyon", kind: "over-limit-at-ear", byMin: 2 * 24 * 60, olderThanMin: 7 * 24 * 60 },
 } as const;
 
 /**
@@ -25,7 +25,7 @@ export async function tellInThePast(demo: Demo, opened: readonly OpenedFinding[]
   for (const [key, ofEntry] of groupBy(news, ({ siteId, date }) => `${siteId} ${date}`)) {
     const [siteId, date] = key.split(" ") as [string, string];
     const site = [...demo.sites].find(([, { id }]) => id === siteId)![0];
-    const entered = new Date(Math.min(demo.calendar(site).instant(date, "22:20").getTime(), at.getTime()));
+    const entered = new Date(Math.min(demo.calendar(site).instant(date, "22:30").getTime(), at.getTime()));
     await demo.at(entered, () => layDown(demo, site, siteId, ofEntry, entered));
   }
   await markSent(demo, at, publicUrl);
@@ -63,6 +63,7 @@ async function layDown(demo: Demo, site: SiteKey, siteId: string, news: readonly
 
 /** Notices whose time had come by then leave, in the words they had that day; their jobs are done. */
 export async function markSent(demo: Demo, by: Date, publicUrl: string): Promise<void> {
+  const { now } = demo;
   await demo.at(by, async () => {
     const due = await rows<{ id: string; createdAt: Date; delayMin: number; recipientId: string; kinds: string[] }>(
       `SELECT n.id, n.created_at AS "createdAt", s.notice_delay_min AS "delayMin", n.recipient_id AS "recipientId", array_agg(f.kind) AS kinds
@@ -75,7 +76,8 @@ export async function markSent(demo: Demo, by: Date, publicUrl: string): Promise
       const isFor = (trouble: { sub: string; kind: string }) => known(demo.actors, trouble.sub).userId === recipientId && kinds.includes(trouble.kind);
       const isFailed = isFor(TROUBLED.failed);
       const notBefore = new Date(createdAt.getTime() + delayMin * MINUTE_MS);
-      const attempted = new Date(notBefore.getTime() + (isFor(TROUBLED.late) ? TROUBLED.late.byMin * MINUTE_MS : 2_000));
+      const isLate = isFor(TROUBLED.late) && now.getTime() - notBefore.getTime() > TROUBLED.late.olderThanMin * MINUTE_MS;
+      const attempted = new Date(notBefore.getTime() + (isLate ? TROUBLED.late.byMin * MINUTE_MS : 2_000));
       await execute(
         `UPDATE notices SET state = $2, not_before = $3, attempted_at = $4, sent_at = CASE WHEN $2 = 'sent' THEN $4::timestamptz END, tries = 1,
            last_error = $5, subject = $6, body_text = $7, body_html = $8, revision = revision + 2 WHERE id = $1`,

@@ -45,7 +45,7 @@ export class Demo {
   readonly actors = new Map<string, Actor>();
   readonly codes = new Map<string, string>();
 
-  constructor(now: Date, readonly spanDays: number) {
+  constructor(readonly now: Date, readonly spanDays: number) {
     for (const key of Object.keys(SITES) as SiteKey[]) this.calendars.set(key, new SiteCalendar(SITES[key].timeZone, now, spanDays));
   }
 

@@ -25,7 +25,7 @@ export interface PlannedShift {
 
 export interface PlannedDay {
   shifts: PlannedShift[];
-  absent: { worker: DemoWorker; workerId: string; crew: DemoCrew }[];
+  absent: { worker: DemoWorker; workerId: string; crew: DemoCrew; date: string }[];
 }
 
 const STEP_MIN = 5;
@@ -43,7 +43,7 @@ export function planDay(demo: Demo, story: DatedStory, site: SiteKey, date: stri
     const crew = departure?.onLoan ? CREWS.find(({ name }) => name === departure.onLoan!.crew)! : own;
     if (!calendar.works(crew, date)) continue;
     const workerId = known(demo.workers, worker.number).id;
-    if (departure?.isAbsent || (!departure && isAway(worker.number, date, ago))) day.absent.push({ worker, workerId, crew });
+    if (departure?.isAbsent || (!departure && isAway(worker.number, date, ago))) day.absent.push({ worker, workerId, crew, date });
     else day.shifts.push(planShift(demo, worker, workerId, crew, date, departure));
   }
   addRoutineRuns(day, date, ago);

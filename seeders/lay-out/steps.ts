@@ -21,9 +21,6 @@ import type { DatedStep } from "./story";
 
 const PATHS = { field: (name: string) => [name], worker: (index: number, name: string) => [index, name] };
 
-/** Whether a step has to be taken before its day's shifts are entered. */
-export const comesFirst = (step: DatedStep): boolean => "assign" in step || "rules" in step || "loan" in step || "taskLevel" in step;
-
 /** One step of the story, by the application's own command. */
 export async function takeStep(demo: Demo, step: DatedStep, now: Date): Promise<void> {
   const calendar = demo.calendar(step.site);

@@ -1,7 +1,7 @@
 import type { SiteKey } from "../demo/programme";
 import { CREWS } from "../demo/programme";
 import { WORKERS } from "../demo/people";
-import { type Departure, STORY, type Step } from "../demo/story";
+import { type Day, type Departure, STORY, type Step } from "../demo/story";
 import type { Demo } from "./programme";
 
 export type DatedStep = Step & { date: string; site: SiteKey };
@@ -23,9 +23,10 @@ const crewOf = (name: string) => {
 };
 
 export function dateStory(demo: Demo): DatedStory {
-  const dateOf = (crewName: string, day: number) => {
+  const dateOf = (crewName: string, day: Day) => {
     const crew = crewOf(crewName);
-    return demo.calendar(crew.site).workdayAgo(crew, day);
+    const calendar = demo.calendar(crew.site);
+    return typeof day === "number" ? calendar.workdayAgo(crew, day) : calendar.workdayIn(crew, day.in);
   };
   const departures = new Map<string, Departure>();
   const steps: DatedStep[] = [];

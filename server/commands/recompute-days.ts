@@ -124,11 +124,7 @@ export function hashOf(refs: DayRefs, methodVersion: number = METHOD_VERSION): s
 }
 
 /** What a stored result says of an evaluated day, but for whose it is and what it rests on. */
-export function resultFacts(
-  input: DayInput,
-  evaluation: DayEvaluation,
-  governing: RuleSetVersion,
-) {
+export function resultFacts(input: DayInput, evaluation: DayEvaluation, governing: RuleSetVersion) {
   const { governingCriteria: _, ...summary } = summarizeDay(input, evaluation, governing);
   const isOwn = ({ ruleSetKey }: CriterionResult) => ruleSetKey === governing.key;
   return {

@@ -7,6 +7,8 @@ import {
   DatedEnd,
   MembershipInput,
   SupervisorInput,
+  SupervisorNameList,
+  SupervisorNameQuery,
 } from "../../shared/schemas/crew";
 import { addCrewMember } from "../commands/add-crew-member";
 import { addCrewSupervisor } from "../commands/add-crew-supervisor";
@@ -21,7 +23,7 @@ import { Site } from "../models/site";
 import { Crew, Worker } from "../models/worker";
 import { crewPolicy, may, sitePolicy, workerPolicy } from "../policies";
 import { presentCrew, presentCrewDetail } from "../presenters/crew";
-import { listCrews, listMemberships, listSupervisors } from "../queries/crews";
+import { listCrews, listMemberships, listSupervisorNames, listSupervisors } from "../queries/crews";
 
 const SpanParams = IdParams.extend({ spanId: z.uuid() });
 
@@ -49,6 +51,21 @@ export function defineCrewRoutes(): void {
     async ({ actor, query }) => ({
       rows: (await listCrews(actor, query)).map((crew) => presentCrew(actor, crew)),
     }),
+  );
+
+  endpoint.get(
+    "/supervisors",
+    {
+      summary: "Who may be given a crew of a site",
+      may: may.officer,
+      query: SupervisorNameQuery,
+      reply: SupervisorNameList,
+    },
+    async ({ actor, query }) => {
+      const site = await findVisible(Site, sitePolicy, query.siteId, actor);
+      authorize(crewPolicy, actor, "change", { siteId: site.id });
+      return { rows: await listSupervisorNames(site.id) };
+    },
   );
 
   endpoint.get(

@@ -10,6 +10,7 @@ import {
 import { OCTAVE_BANDS_HZ } from "../../shared/acoustics/types";
 import { parseNumber } from "../../shared/format/number";
 import { useLocale } from "../lib/i18n";
+import { bandLabel } from "./band-picture";
 import { Field, Unreadable } from "./form";
 import { NumberInput, type Typed } from "./number-input";
 
@@ -132,7 +133,7 @@ export function BandFields<Values extends FieldValues, Output>({
               <div className="band-cells">
                 {OCTAVE_BANDS_HZ.map((hz, band) => (
                   <div key={hz}>
-                    <span aria-hidden="true">{hz >= 1000 ? `${hz / 1000} k` : hz}</span>
+                    <span aria-hidden="true">{bandLabel(hz)}</span>
                     <NumberInput
                       className="input band-input"
                       aria-label={i18n.t("{row}, {hz} Hz", { row: row.label, hz })}

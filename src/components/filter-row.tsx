@@ -1,5 +1,6 @@
 import { type ReactNode, useId } from "react";
 import type { Choice } from "./form";
+import "../styles/filter-row.css";
 
 /** What narrows a list, in one line above it. */
 export function FilterRow({ label, children }: { label: string; children: ReactNode }) {

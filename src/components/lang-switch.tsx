@@ -1,10 +1,10 @@
 import { useLingui } from "@lingui/react";
-import { LOCALE_NAMES, LOCALES } from "../../shared/i18n/index";
+import { LOCALE_NAMES, LOCALES, type Locale } from "../../shared/i18n/index";
 import { chooseLocale, useLocale } from "../lib/i18n";
 import { TextButton } from "./link";
 
 /** The other languages, each in its own words; works before sign-in. */
-export function LangSwitch({ onChosen }: { onChosen?: () => void }) {
+export function LangSwitch({ onChosen }: { onChosen?: (locale: Locale) => void }) {
   const { i18n } = useLingui();
   const current = useLocale();
   return (
@@ -13,7 +13,7 @@ export function LangSwitch({ onChosen }: { onChosen?: () => void }) {
         <TextButton
           key={locale}
           lang={locale}
-          onClick={() => void chooseLocale(i18n, locale).then(onChosen)}
+          onClick={() => void chooseLocale(i18n, locale).then(() => onChosen?.(locale))}
         >
           {LOCALE_NAMES[locale]}
         </TextButton>

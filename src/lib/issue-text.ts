@@ -142,6 +142,38 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("The tasks are longer than 24 hours.");
     case "not-a-supervisor":
       return i18n.t("This person is no supervisor at the crew’s site.");
+    case "grant-twice":
+      return i18n.t("This role stands here twice.");
+    case "worker-needed":
+      return i18n.t("The worker’s role needs a worker: choose one.");
+    case "time-zone-unknown":
+      return i18n.t("This time zone is not known.");
+    case "field-check-drift":
+      return i18n.t(
+        "The field checks drifted by more than 0.5 dB. Discard the run, or say why it is kept.",
+      );
+    case "calibration-out-of-date":
+      return i18n.t("The laboratory calibration had run out on that day. Say why the run is kept.");
+    case "reading-empty":
+      return i18n.t("This row says nothing yet. Type a figure, or take the row out.");
+    case "in-the-future":
+      return i18n.t("This date lies ahead.");
+    case "shift-of-another-day":
+      return i18n.t("That shift is another worker’s or another day’s.");
+    case "whole-day-unconfirmed":
+      return i18n.t("A shift of exactly 24 hours: confirm it below.");
+    case "protector-archived":
+      return i18n.t("This protector is no longer in use.");
+    case "protector-data-later":
+      return i18n.t("Its data begin later than that.");
+    case "assignments-overlap":
+      return i18n.t("This worker has a protector for that use on those days.");
+    case "reason-without-requirement":
+      return i18n.t("There is no requirement that this would be the reason for.");
+    case "job-of-other-site":
+      return i18n.t("This job is another site’s.");
+    case "worker-left":
+      return i18n.t("This worker has left.");
     default:
       return i18n.t("This needs another look.");
   }

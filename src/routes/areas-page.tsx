@@ -123,7 +123,10 @@ export function Component() {
               kind: "right",
               cell: ({ id, name, can }) =>
                 can.change && (
-                  <TextButton aria-label={i18n.t("Change {name}", { name })} onClick={() => edit(id)}>
+                  <TextButton
+                    aria-label={i18n.t("Change {name}", { name })}
+                    onClick={() => edit(id)}
+                  >
                     {i18n.t("Change")}
                   </TextButton>
                 ),
@@ -131,7 +134,11 @@ export function Component() {
           ]}
         />
       </PageBody>
-      <Folio>{i18n.t("A protector counts as worn in the tasks of a zone, and in those that reach the site’s level.")}</Folio>
+      <Folio>
+        {i18n.t(
+          "A protector counts as worn in the tasks of a zone, and in those that reach the site’s level.",
+        )}
+      </Folio>
     </>
   );
 }

@@ -175,7 +175,9 @@ function CrewChoice({
   return (
     <div className="sheet-head">
       <h1 className="sheet-crew">
-        {crew && !isChoice ? i18n.t("Crew sheet, {crew}", { crew: crew.name }) : i18n.t("Crew sheet")}
+        {crew && !isChoice
+          ? i18n.t("Crew sheet, {crew}", { crew: crew.name })
+          : i18n.t("Crew sheet")}
         {crew && isChoice && <span className="sr-only">, {crew.name}</span>}
       </h1>
       {isChoice && (

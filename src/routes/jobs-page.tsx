@@ -36,7 +36,8 @@ export function Component() {
       a.name.localeCompare(b.name, i18n.locale),
   );
   const changed = rows.find(({ id, can }) => id === editing && can.change);
-  const sumMin = ({ tasks: day }: Job) => day.reduce((sum, { durationMin }) => sum + durationMin, 0);
+  const sumMin = ({ tasks: day }: Job) =>
+    day.reduce((sum, { durationMin }) => sum + durationMin, 0);
   const used = new Set(changed?.tasks.map(({ taskId }) => taskId));
   return (
     <>
@@ -44,7 +45,9 @@ export function Component() {
         <PageHead
           way={<RuleWays />}
           title={i18n.t("Jobs")}
-          lead={i18n.t("A day opens filled with the nominal day of the worker’s job, so that only departures are typed.")}
+          lead={i18n.t(
+            "A day opens filled with the nominal day of the worker’s job, so that only departures are typed.",
+          )}
           actions={
             choice.isOfficer &&
             editing === null && (
@@ -67,7 +70,9 @@ export function Component() {
               sites={choice.sites.map(({ id, name }) => ({ value: id, label: name }))}
               tasksOf={(siteId) =>
                 tasks.data.rows
-                  .filter((task) => task.siteId === siteId && (!task.isArchived || used.has(task.id)))
+                  .filter(
+                    (task) => task.siteId === siteId && (!task.isArchived || used.has(task.id)),
+                  )
                   .map(({ id, name }) => ({ value: id, label: name }))
               }
               crews={(crews.data?.rows ?? []).filter(({ isArchived }) => !isArchived)}
@@ -83,7 +88,6 @@ export function Component() {
           rows={rows}
           rowKey={({ id }) => id}
           isSelected={({ id }) => id === editing}
-          isTwoLine
           groupOf={({ siteId, isArchived }) =>
             isArchived
               ? { key: "archived", label: i18n.t("No longer in use") }
@@ -109,7 +113,8 @@ export function Component() {
                   day.map(({ taskId, durationMin }, index) => (
                     <span key={taskId}>
                       {index > 0 && ", "}
-                      {taskName(taskId)} <span className="mono">{formatMinutes(durationMin, locale)}</span>
+                      {taskName(taskId)}{" "}
+                      <span className="mono">{formatMinutes(durationMin, locale)}</span>
                     </span>
                   ))
                 ),
@@ -136,7 +141,10 @@ export function Component() {
               kind: "right",
               cell: ({ id, name, can }) =>
                 can.change && (
-                  <TextButton aria-label={i18n.t("Change {name}", { name })} onClick={() => edit(id)}>
+                  <TextButton
+                    aria-label={i18n.t("Change {name}", { name })}
+                    onClick={() => edit(id)}
+                  >
                     {i18n.t("Change")}
                   </TextButton>
                 ),
@@ -144,7 +152,11 @@ export function Component() {
           ]}
         />
       </PageBody>
-      <Folio>{i18n.t("A nominal day fills in days to come; days that are saved stay as they were recorded.")}</Folio>
+      <Folio>
+        {i18n.t(
+          "A nominal day fills in days to come; days that are saved stay as they were recorded.",
+        )}
+      </Folio>
     </>
   );
 }

@@ -50,7 +50,12 @@ function OwnPage({ workerId }: { workerId: string }) {
     void worker.refetch();
     void days.refetch();
   };
-  let title: ReactNode = <span className="loading-line" />;
+  let title: ReactNode = (
+    <>
+      <span className="sr-only">{i18n.t("Loading")}</span>
+      <span className="loading-line" />
+    </>
+  );
   let more: readonly string[] = [];
   let isLong = false;
   let protectors: ReturnType<typeof protectorsToday> | null = null;
@@ -86,9 +91,7 @@ function OwnPage({ workerId }: { workerId: string }) {
           {part(<LastShift day={lastDay} />)}
         </Section>
         <Section title={i18n.t("My year at the ear")} id="my-year">
-          {part(
-            <MyHistory days={days.data ?? []} assignments={worker.data?.assignments ?? []} />,
-          )}
+          {part(<MyHistory days={days.data ?? []} assignments={worker.data?.assignments ?? []} />)}
         </Section>
         <div className="me-report">
           {worker.data?.can.report && <ReportProblem workerId={workerId} />}

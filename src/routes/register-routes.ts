@@ -9,4 +9,10 @@ export const registerRoutes: RouteObject[] = [
   { path: paths.task(":id"), lazy: () => import("./task-page") },
   { path: paths.rules, lazy: () => import("./rules-page") },
   { path: paths.site(":id"), lazy: () => import("./site-rules-page") },
+  { path: paths.areas, lazy: () => import("./areas-page") },
+  { path: paths.jobs, lazy: () => import("./jobs-page") },
+  { path: paths.crews, lazy: () => import("./crews-page") },
+  { path: paths.crew(":id"), lazy: () => import("./crew-page") },
+  { path: paths.instruments, lazy: () => import("./instruments-page") },
+  { path: paths.imports, lazy: () => import("./import-page") },
 ];

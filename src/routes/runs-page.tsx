@@ -1,3 +1,160 @@
+import { useLingui } from "@lingui/react";
+import { useInfiniteQuery, useQuery } from "@tanstack/react-query";
+import { useSearchParams } from "react-router-dom";
+import { formatShortDate } from "../../shared/format/date";
+import { formatDose } from "../../shared/format/dose";
+import { formatDuration } from "../../shared/format/duration";
+import { formatLevel } from "../../shared/format/level";
+import type { RunView } from "../../shared/schemas/run";
+import { ButtonLink } from "../components/button";
+import { type DataColumn, DataTable } from "../components/data-table";
+import { Empty } from "../components/empty";
+import { FilterRow, FilterSelect } from "../components/filter-row";
+import { TextLink } from "../components/link";
+import { Folio, PageBody, PageHead } from "../components/page";
+import { runQueries } from "../features/runs/queries";
+import { driftDb, isDriftTooLarge } from "../features/runs/run-fields";
+import { hasRole, useUser } from "../features/session/session";
+import { useLocale } from "../lib/i18n";
+import { references } from "../lib/references";
+import { paths } from "../paths";
+import "../styles/findings.css";
+import "../styles/runs.css";
+
 export function Component() {
-  return null;
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const user = useUser();
+  const [search, setSearch] = useSearchParams();
+  const instruments = useQuery(references.instruments());
+  const instrumentId = instruments.data?.rows.find(({ id }) => id === search.get("instrument"))?.id;
+  const siteId = user.sites.find(({ id }) => id === search.get("site"))?.id;
+  const list = useInfiniteQuery(runQueries.list({ siteId, instrumentId }));
+  const rows = list.data?.pages.flatMap((page) => page.rows) ?? [];
+  const narrow = (name: string, value: string) =>
+    setSearch(
+      (before) => {
+        const next = new URLSearchParams(before);
+        if (value === "") next.delete(name);
+        else next.set(name, value);
+        return next;
+      },
+      { replace: true },
+    );
+  const columns: DataColumn<RunView>[] = [
+    {
+      id: "date",
+      head: i18n.t("Day"),
+      isRowHead: true,
+      cell: (run) => (
+        <span className="two-lines">
+          <TextLink to={paths.run(run.id)}>{formatShortDate(run.date, locale)}</TextLink>
+          <span className="beneath">{run.isVoid ? i18n.t("struck") : run.revision > 1 ? i18n.t("revision {number}", { number: run.revision }) : " "}</span>
+        </span>
+      ),
+    },
+    {
+      id: "worker",
+      head: i18n.t("Worn by"),
+      cell: ({ workerId, workerName }) => (workerId ? <TextLink className="is-quiet is-name" to={paths.worker(workerId)}>{workerName}</TextLink> : "–"),
+    },
+    {
+      id: "instrument",
+      head: i18n.t("Instrument"),
+      cell: (run) => (
+        <span className="two-lines">
+          <span>{run.instrumentName}</span>
+          <span className="beneath">{run.serialNumber}</span>
+        </span>
+      ),
+      hidesOnPhone: true,
+    },
+    { id: "time", head: i18n.t("Run time"), kind: "right", cell: ({ durationMin }) => formatDuration(durationMin, locale), hidesOnPhone: true },
+    {
+      id: "readings",
+      head: i18n.t("Readings"),
+      cell: ({ readings }) => (
+        <ul className="run-readings">
+          {readings.map((reading) => (
+            <li key={JSON.stringify(reading.settings)}>
+              <span className="beneath">{i18n.t("{rate} dB, {threshold}", { rate: reading.settings.exchangeRateDb, threshold: reading.settings.thresholdDb === null ? i18n.t("no threshold") : i18n.t("threshold {value}", { value: reading.settings.thresholdDb }) })}</span>{" "}
+              <b className="mono">{reading.averageDb === null ? formatDose(reading.dosePct, locale) : formatLevel(reading.averageDb, locale)}</b>
+            </li>
+          ))}
+        </ul>
+      ),
+    },
+    {
+      id: "check",
+      head: i18n.t("Field checks"),
+      cell: ({ checkBeforeDb, checkAfterDb, keptReason }) => {
+        const drift = driftDb(checkBeforeDb, checkAfterDb);
+        return (
+          <span className="two-lines">
+            <span className={isDriftTooLarge(drift) ? "is-fault" : undefined}>
+              {drift === null ? i18n.t("not both") : i18n.t("{drift} dB apart", { drift: formatLevel(drift, locale) })}
+            </span>
+            {keptReason && <span className="beneath">{i18n.t("kept: {reason}", { reason: keptReason })}</span>}
+          </span>
+        );
+      },
+    },
+  ];
+  return (
+    <>
+      <PageBody>
+        <PageHead
+          title={i18n.t("Runs")}
+          lead={i18n.t("What instruments said, from out to back, each reading under its own settings.")}
+          actions={
+            <>
+              {hasRole(user, "officer") && (
+                <ButtonLink kind="primary" to={paths.newRun}>
+                  {i18n.t("New run")}
+                </ButtonLink>
+              )}
+              <ButtonLink to={paths.instruments}>{i18n.t("Instruments")}</ButtonLink>
+            </>
+          }
+        />
+        <FilterRow label={i18n.t("Narrow the runs")}>
+          {user.sites.length > 1 && (
+            <FilterSelect
+              label={i18n.t("Site")}
+              value={siteId ?? ""}
+              onChange={(value) => narrow("site", value)}
+              choices={[{ value: "", label: i18n.t("All sites") }, ...user.sites.map(({ id, name }) => ({ value: id, label: name }))]}
+            />
+          )}
+          <FilterSelect
+            label={i18n.t("Instrument")}
+            value={instrumentId ?? ""}
+            onChange={(value) => narrow("instrument", value)}
+            choices={[{ value: "", label: i18n.t("Any instrument") }, ...(instruments.data?.rows ?? []).filter(({ kind }) => kind !== "calibrator").map(({ id, name, serialNumber }) => ({ value: id, label: `${name}, ${serialNumber}` }))]}
+          />
+        </FilterRow>
+        <DataTable
+          caption={i18n.t("Runs, latest first")}
+          columns={columns}
+          rows={rows}
+          rowKey={({ id }) => id}
+          isTwoLine
+          state={list.isSuccess ? "ready" : list.isError ? "failed" : "loading"}
+          error={list.error}
+          onRetry={() => void list.refetch()}
+          more={{ hasMore: list.hasNextPage, isLoading: list.isFetchingNextPage, onMore: () => void list.fetchNextPage() }}
+          empty={
+            <Empty title={i18n.t("No run is on record yet.")}>
+              {hasRole(user, "officer") && (
+                <>
+                  {i18n.t("A run typed into the day grid stands here too.")} <TextLink to={paths.newRun}>{i18n.t("Record a run")}</TextLink>
+                </>
+              )}
+            </Empty>
+          }
+        />
+      </PageBody>
+      <Folio>{i18n.t("A reading counts only for criteria with its settings.")}</Folio>
+    </>
+  );
 }

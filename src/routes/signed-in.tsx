@@ -1,12 +1,15 @@
+import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
+import { useState } from "react";
 import { Outlet, useLocation } from "react-router-dom";
-import type { SessionUser } from "../../shared/schemas/session";
+import type { RoleName, SessionUser } from "../../shared/schemas/session";
 import { ConnectionBanner } from "../components/connection-banner";
 import { LangSwitch } from "../components/lang-switch";
 import { TextButton } from "../components/link";
 import { type NavItem, Page, RunningHead } from "../components/page";
 import { SearchBox } from "../features/session/search-box";
-import { hasRole, signOut, useUser } from "../features/session/session";
+import { hasRole, keepLanguage, signOut, useUser } from "../features/session/session";
+import { chooseTheme, readTheme, type Theme } from "../lib/theme";
 import { paths } from "../paths";
 
 /** The pages of each role, those of several roles one after the other. */
@@ -30,6 +33,65 @@ function useNavigation(user: SessionUser): NavItem[] {
     hasRole(user, "worker") && user.roles.length > 1 && { to: paths.me, label: i18n.t("My page") },
   ];
   return items.filter((item) => item !== false);
+}
+
+/** What somebody is here, in a word: the role with most to do. */
+function roleWord(i18n: I18n, roles: readonly RoleName[]): string {
+  if (roles.includes("officer")) return i18n.t("safety officer");
+  if (roles.includes("supervisor")) return i18n.t("supervisor");
+  if (roles.includes("auditor")) return i18n.t("auditor");
+  if (roles.includes("administrator")) return i18n.t("administrator");
+  return i18n.t("worker");
+}
+
+function AccountActions() {
+  const { i18n } = useLingui();
+  return (
+    <>
+      <LangSwitch onChosen={(locale) => void keepLanguage(locale)} />
+      <TextButton onClick={() => void signOut()}>{i18n.t("Sign out")}</TextButton>
+    </>
+  );
+}
+
+/** Who is signed in; opened, the language, light or dark, and the way out. */
+function AccountMenu({ name, role }: { name: string; role: string }) {
+  const { i18n } = useLingui();
+  const [theme, setTheme] = useState<Theme>(readTheme);
+  const themes: [Theme, string][] = [
+    ["system", i18n.t("As the device")],
+    ["light", i18n.t("Light")],
+    ["dark", i18n.t("Dark")],
+  ];
+  return (
+    <details className="account-menu">
+      <summary>
+        <b>
+          {name}, {role}
+        </b>
+      </summary>
+      <div className="account-menu-leaf">
+        <fieldset>
+          <legend>{i18n.t("Light or dark")}</legend>
+          {themes.map(([value, label]) => (
+            <label key={value}>
+              <input
+                type="radio"
+                name="theme"
+                checked={theme === value}
+                onChange={() => {
+                  chooseTheme(value);
+                  setTheme(value);
+                }}
+              />
+              {label}
+            </label>
+          ))}
+        </fieldset>
+        <AccountActions />
+      </div>
+    </details>
+  );
 }
 
 /** Frame of every page behind the sign-in. A worker's page and the Crew sheet bring words of their own. */
@@ -57,9 +119,12 @@ export function SignedIn() {
                     {user.sites.length === 1 ? user.sites[0]?.name : user.organizationName}
                   </span>
                 )}
-                {!(hasRole(user, "worker") && isPlain) && <b>{user.name}</b>}
-                <LangSwitch />
-                <TextButton onClick={() => void signOut()}>{i18n.t("Sign out")}</TextButton>
+                {isPlain && !hasRole(user, "worker") && <b>{user.name}</b>}
+                {isPlain ? (
+                  <AccountActions />
+                ) : (
+                  <AccountMenu name={user.name} role={roleWord(i18n, user.roles)} />
+                )}
               </>
             }
           />

@@ -43,7 +43,9 @@ function useYearFrame(ruleSets: readonly { key: string; version: number }[] | un
   const { i18n } = useLingui();
   const locale = useLocale();
   return useMemo((): StripFrame | null => {
-    const frames = (ruleSets ?? []).map(({ key, version }) => stripFrame(i18n, locale, key, version));
+    const frames = (ruleSets ?? []).map(({ key, version }) =>
+      stripFrame(i18n, locale, key, version),
+    );
     const levels = new Set(frames.map(({ limits }) => limits[0]?.levelDb));
     return levels.size === 1 ? (frames[0] ?? null) : null;
   }, [ruleSets, i18n, locale]);

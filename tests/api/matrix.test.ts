@@ -49,6 +49,7 @@ const matrix: Record<string, string> = {
   "GET /crews": "officer supervisor auditor",
   "POST /crews": "officer",
   "GET /crews/:id": "officer supervisor auditor",
+  "GET /supervisors": "officer",
   "PUT /crews/:id": "officer",
   "POST /crews/:id/memberships": "officer",
   "PATCH /crews/:id/memberships/:spanId": "officer",

@@ -43,7 +43,9 @@ export function AskOfficer({
       {chosen ? (
         <>
           <p className="sheet-lead">
-            {i18n.t("Your question goes to the safety officer with the order; the answer stands here.")}
+            {i18n.t(
+              "Your question goes to the safety officer with the order; the answer stands here.",
+            )}
           </p>
           <fieldset className="sheet-ask-about">
             <legend>{i18n.t("About")}</legend>
@@ -73,7 +75,9 @@ export function AskOfficer({
           />
         </>
       ) : (
-        <Empty title={i18n.t("No order is open for this crew, so there is nothing to ask about here.")}>
+        <Empty
+          title={i18n.t("No order is open for this crew, so there is nothing to ask about here.")}
+        >
           {i18n.t("For anything else, talk to your safety officer.")}
         </Empty>
       )}

@@ -99,9 +99,7 @@ export function OrderActions({
             isBusy={isBusy && asked?.kind === "mark-done"}
             aria-label={i18n.t("Mark done: {name}", { name: workerName })}
             onClick={() =>
-              send({ kind: "mark-done", text: "" }, () =>
-                setSaid(i18n.t("The officer checks it.")),
-              )
+              send({ kind: "mark-done", text: "" }, () => setSaid(i18n.t("The officer checks it.")))
             }
           >
             {i18n.t("Mark done")}

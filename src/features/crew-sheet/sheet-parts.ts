@@ -97,7 +97,11 @@ export function expectedTitle(i18n: I18n, part: SheetPart, hasStarted: boolean):
 }
 
 /** "One was over, one we can’t tell yet". */
-export function lastTitle(i18n: I18n, rows: readonly CrewSheetRow[], hasLimitAtEar: boolean): string {
+export function lastTitle(
+  i18n: I18n,
+  rows: readonly CrewSheetRow[],
+  hasLimitAtEar: boolean,
+): string {
   const verdicts = rows.flatMap(({ figures, isAbsent }) =>
     figures && !isAbsent ? [sheetVerdict(figures, hasLimitAtEar)] : [],
   );
@@ -115,7 +119,10 @@ export function lastTitle(i18n: I18n, rows: readonly CrewSheetRow[], hasLimitAtE
   const text =
     open === 0
       ? hasLimitAtEar
-        ? i18n.t("{over, plural, one {{overNumber} was over} other {{overNumber} were over}}", values)
+        ? i18n.t(
+            "{over, plural, one {{overNumber} was over} other {{overNumber} were over}}",
+            values,
+          )
         : i18n.t(
             "{over, plural, one {{overNumber} was protected too little} other {{overNumber} were protected too little}}",
             values,
@@ -160,7 +167,9 @@ export function lastLead(i18n: I18n, locale: Locale, last: CrewSheetView["last"]
   const who = [
     i18n.t("{number} recorded", { number: numberWord(i18n, recorded) }),
     ...(absent > 0 ? [absentWords(i18n, absent)] : []),
-    ...(missing > 0 ? [i18n.t("{number} not recorded", { number: numberWord(i18n, missing) })] : []),
+    ...(missing > 0
+      ? [i18n.t("{number} not recorded", { number: numberWord(i18n, missing) })]
+      : []),
   ].join(", ");
   return i18n.t("{day}. {who}.", { day: formatDay(last.date, locale), who: capital(i18n, who) });
 }

@@ -1,6 +1,11 @@
 import { useLingui } from "@lingui/react";
 import { asReason, reasonText } from "../../../shared/findings/reasons";
-import { noticedSentence, orderSentence, remedyFigure, remedyOf } from "../../../shared/findings/sentences";
+import {
+  noticedSentence,
+  orderSentence,
+  remedyFigure,
+  remedyOf,
+} from "../../../shared/findings/sentences";
 import { findingWord } from "../../../shared/findings/words";
 import { formatLimit } from "../../../shared/format/level";
 import type { CrewSheetRow } from "../../../shared/schemas/crew";

@@ -10,7 +10,8 @@ import type { OrderStep } from "./queries";
 export function currentFinding(error: unknown): FindingView | null {
   if (!(error instanceof ApiError) || error.code !== "stale") return null;
   const body: unknown = error.body;
-  const current = typeof body === "object" && body !== null && "current" in body ? body.current : null;
+  const current =
+    typeof body === "object" && body !== null && "current" in body ? body.current : null;
   const parsed = FindingView.safeParse(current);
   return parsed.success ? parsed.data : null;
 }
@@ -33,7 +34,8 @@ export function StaleOrder({
 }) {
   const { i18n } = useLingui();
   const last = current.steps.at(-1);
-  const isOver = current.state === "closed" || (current.state === "done" && step.kind !== "comment");
+  const isOver =
+    current.state === "closed" || (current.state === "done" && step.kind !== "comment");
   const mine =
     step.kind === "mark-done"
       ? i18n.t("Mark done")
@@ -70,7 +72,9 @@ export function StaleOrder({
           <tr>
             <th scope="col">{workerName}</th>
             <th scope="col">{i18n.t("Yours")}</th>
-            <th scope="col">{i18n.t("Saved, revision {revision}", { revision: current.revision })}</th>
+            <th scope="col">
+              {i18n.t("Saved, revision {revision}", { revision: current.revision })}
+            </th>
           </tr>
         </thead>
         <tbody>

@@ -6,6 +6,7 @@ import type { EntryNotices as Notices } from "../../../shared/schemas/notice";
 import type { DayGridView } from "../../../shared/schemas/shift";
 import { Banner } from "../../components/banner";
 import { Button, ButtonLink } from "../../components/button";
+import { stripFrame } from "../../components/day-figures";
 import { TextButton } from "../../components/link";
 import { Folio, PageHead } from "../../components/page";
 import { Status } from "../../components/status";
@@ -24,14 +25,11 @@ import type { GridFrame, MendAction } from "./grid-row";
 import type { Place } from "./paste";
 import { KeyLegend, RowPanel } from "./row-panel";
 import { isOnlyFilledIn, rowState } from "./row-state";
-import { rowStateSentence } from "./row-words";
+import { waitingSentences } from "./row-words";
 import { countRows } from "./save";
 import { useDayEntry } from "./use-day-entry";
-import { hasLimitAtEar, outsideWords, stripRuler } from "./words";
 import { WorkerByWorker } from "./worker-by-worker";
 
-/** Rows that the head names before it only counts them. */
-const NAMED_ROWS = 3;
 const PHONE = "(max-width: 759.98px)";
 
 function useIsPhone(): boolean {
@@ -96,12 +94,10 @@ export function DayEntry({
     return {
       columns,
       isWide,
-      ...stripRuler(i18n, rules, locale),
-      hasLimitAtEar: hasLimitAtEar(rules),
+      strip: stripFrame(i18n, locale, rules.key, rules.version),
       showsUncertainty:
         view.settings.usesUncertainty &&
         rules.criteria.some(({ usesUncertainty }) => usesUncertainty),
-      outsideWords: ({ summary }) => (summary ? outsideWords(i18n, summary, rules, locale) : ""),
       taskName: (id) => names.get(id) ?? "",
     };
   }, [columns, isWide, view, i18n, locale]);
@@ -212,7 +208,7 @@ export function DayEntry({
 
   const focused = found[focus.row];
   const focusedRow = focused && gridRows.get(focused.row.workerId);
-  const named = states.flatMap((state, at) => rowStateSentence(i18n, state, at + 1) ?? []);
+  const named = waitingSentences(i18n, states);
   const usual = i18n.t("Usual shift {start}, {length}.", {
     start: view.crew.usualStart,
     length: formatDuration(view.crew.usualLengthMin, locale),
@@ -248,14 +244,7 @@ export function DayEntry({
               })}
               {named.length > 0 ? ":" : "."}
             </b>{" "}
-            {named.length > 0 && (
-              <>
-                {named.slice(0, NAMED_ROWS).join(", ")}
-                {named.length > NAMED_ROWS
-                  ? i18n.t(" and {count} more.", { count: named.length - NAMED_ROWS })
-                  : "."}{" "}
-              </>
-            )}
+            {named.length > 0 && `${named.join(", ")}. `}
             {usual}
           </>
         }

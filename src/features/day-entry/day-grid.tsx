@@ -389,8 +389,8 @@ export function DayGrid({
     setEdit(null);
     const pasted = pasteBlock(parseBlock(text), selection, draft.rows, columns, locale, words);
     if (pasted.changes.length > 0) dispatch({ type: "set-cells", changes: pasted.changes });
-    setAnchor({ row: pasted.range.fromRow, column: pasted.range.fromColumn });
-    onFocus({ row: pasted.range.toRow, column: pasted.range.toColumn });
+    setAnchor({ row: pasted.range.toRow, column: pasted.range.toColumn });
+    onFocus({ row: pasted.range.fromRow, column: pasted.range.fromColumn });
     onSay(pastedWords(pasted));
   }
 
@@ -472,7 +472,7 @@ export function DayGrid({
             if (segment.kind === "gap") {
               return (
                 // biome-ignore lint/suspicious/noArrayIndexKey: a gap has no other name than its place
-                <tr key={`gap ${at}`} aria-hidden="true" style={{ height: segment.heightPx }} />
+                <tr key={`gap ${at}`} style={{ height: segment.heightPx }} />
               );
             }
             const { index } = segment;
@@ -525,44 +525,51 @@ function keepInSight(region: HTMLElement, top: number, bottom: number): void {
 
 type WidthOf = Readonly<Record<string, number>>;
 const WIDE_PX: WidthOf = {
-  who: 150,
-  start: 60,
-  length: 54,
-  task: 55,
-  unaccounted: 84,
-  sum: 46,
-  reading: 104,
-  protector: 118,
-  worn: 62,
-  ear: 124,
-  strip: 176,
-  outside: 118,
-  word: 112,
-};
-const NARROW_PX: WidthOf = {
   who: 146,
   start: 58,
   length: 50,
-  task: 51,
-  unaccounted: 78,
+  unaccounted: 80,
+  sum: 44,
+  reading: 112,
+  protector: 112,
+  worn: 58,
+  ear: 120,
+  strip: 172,
+  outside: 116,
+  word: 112,
+};
+const NARROW_PX: WidthOf = {
+  who: 142,
+  start: 56,
+  length: 48,
+  unaccounted: 74,
   sum: 42,
-  reading: 86,
-  protector: 100,
+  reading: 78,
+  protector: 96,
   worn: 52,
   ear: 0,
   strip: 172,
   outside: 0,
   word: 116,
 };
+/** A letter of a column's head and the space beside it, px: the longest word stands unbroken. */
+const LETTER_PX = 6.7;
+const BESIDE_PX = 9;
+const LONGEST_WORD = 12;
+
+function taskWidthPx(name: string, isWide: boolean): number {
+  const longest = Math.max(...name.split(/[\s-]+/).map((word) => word.length));
+  const wordPx = Math.min(longest, LONGEST_WORD) * LETTER_PX + BESIDE_PX;
+  return Math.ceil(Math.max(isWide ? 50 : 46, wordPx));
+}
 
 /** What the columns need at least; the protector takes what is left. */
 export function gridWidthPx(columns: readonly GridColumn[], isWide: boolean): number {
-  const widths = isWide ? WIDE_PX : NARROW_PX;
-  const tasks = columns.filter(({ task }) => task !== null).length;
-  const fixed = Object.entries(widths)
-    .filter(([name]) => name !== "task")
-    .reduce((sum, [, width]) => sum + width, 0);
-  return fixed + tasks * (widths.task ?? 0);
+  const fixed = Object.values(isWide ? WIDE_PX : NARROW_PX).reduce((sum, width) => sum + width, 0);
+  return columns.reduce(
+    (sum, { task }) => sum + (task ? taskWidthPx(task.name, isWide) : 0),
+    fixed,
+  );
 }
 
 function GridHead({ frame }: { frame: GridFrame }) {
@@ -593,7 +600,10 @@ function GridHead({ frame }: { frame: GridFrame }) {
         {typed.map(({ id, task }) => (
           <col
             key={id}
-            style={{ width: id === "protector" ? undefined : widths[task ? "task" : id] }}
+            style={{
+              width:
+                id === "protector" ? undefined : task ? taskWidthPx(task.name, isWide) : widths[id],
+            }}
           />
         ))}
         {isWide && <col style={{ width: widths.ear }} />}
@@ -603,7 +613,7 @@ function GridHead({ frame }: { frame: GridFrame }) {
       </colgroup>
       <thead>
         <tr className="halves" aria-rowindex={1}>
-          <th className="who" />
+          <td className="who" />
           <th colSpan={typed.length}>
             {i18n.t(
               "Filled in from the roster and the nominal day; you type what was different. Minutes in each task, its level in dB under the name",
@@ -636,8 +646,8 @@ function GridHead({ frame }: { frame: GridFrame }) {
           )}
           <th scope="col" className="strip-head">
             <StripScale
-              limits={frame.limits}
-              targetBand={frame.targetBand}
+              limits={frame.strip.limits}
+              targetBand={frame.strip.targetBand}
               widthPx={STRIP_WIDTH_PX}
             />
           </th>

@@ -107,8 +107,7 @@ function putLastWorn(
   const [first = null] = shares;
   if (first !== null && shares.every((share) => share === first))
     put(cells, "worn", first, "filled");
-  else
-    worn.forEach((taskId, index) => put(cells, wornCell(taskId), shares[index] ?? null, "filled"));
+  else for (const taskId of worn) put(cells, wornCell(taskId), lastWorn[taskId] ?? null, "filled");
 }
 
 function savedCells(saved: SavedShift): Cells {

@@ -15,7 +15,7 @@ import {
 import { type DaySummary, summarizeDay } from "../../../shared/day/summarize-day";
 import { ruleSetInForce, ruleSetVersion } from "../../../shared/rule-sets/index";
 import type { DayGridView, GridRow, GridTask, ShiftTaskInput } from "../../../shared/schemas/shift";
-import { atLocalTime } from "../../../shared/time/zone";
+import { atLocalTime, type LocalInstant } from "../../../shared/time/zone";
 import { type CellFault, numberIn, readingIn, unaccountedIn } from "./cells";
 import { type CellId, taskCell, wornCell } from "./columns";
 import { editableRun, type ReadingSetup, type RowDraft, type RowIssue } from "./draft";
@@ -143,48 +143,79 @@ export function createRowEvaluator(view: DayGridView): EvaluateRow {
   const context = { tasks, models, site: { wearFromDb, creditsActivePart, usesUncertainty } };
   const known = new WeakMap<RowDraft, RowEvaluation>();
 
+  const startOf = rememberEach((time: string) =>
+    atLocalTime(view.date, time, view.crew.timeZone),
+  );
+
   function evaluate(row: RowDraft): RowEvaluation {
     const gridRow = gridRows.get(row.workerId);
     if (!gridRow) throw new RangeError("a row of somebody who is not in this crew");
     const times = timesOf(row, tasks);
     const hasOtherShift = gridRow.otherShifts.length > 0;
-    const protectors = protectorsOf(gridRow, tasks, models, times.tasks, context.site.wearFromDb);
+    const protectors = once(() =>
+      protectorsOf(gridRow, tasks, models, times.tasks, context.site.wearFromDb),
+    );
+    const nothing = (problems: readonly RowProblem[]): RowEvaluation => ({
+      row,
+      ...times,
+      problems,
+      questions: [],
+      values: null,
+      input: null,
+      evaluation: null,
+      summary: null,
+      get protectors() {
+        return protectors();
+      },
+      isBare: false,
+      hasOtherShift,
+    });
     if (row.isAbsent) {
       const problems = gridRow.saved ? [shiftSaved(gridRow.saved.shiftId)] : [];
-      return nothing(row, times, [...problems, ...refusals(row)], protectors, hasOtherShift);
+      return nothing([...problems, ...refusals(row)]);
     }
-    const problems = problemsOf(row, gridRow, times, view, tasks);
-    const readings = readingsOf(row, gridRow, times.lengthMin, instruments);
-    if (problems.length > 0 || times.start === null || times.lengthMin === null) {
-      return nothing(row, times, [...problems, ...refusals(row)], protectors, hasOtherShift);
+    const problems = problemsOf(row, gridRow, times, startOf, tasks);
+    const { start, lengthMin } = times;
+    if (problems.length > 0 || start === null || lengthMin === null) {
+      return nothing([...problems, ...refusals(row)]);
     }
     const unaccounted = unaccountedIn(row.cells.unaccounted);
-    const shift: EnteredShift = {
-      id: "shift",
-      lengthMin: times.lengthMin,
-      tasks: times.tasks,
-      unaccounted,
-      readings,
-    };
-    const input = buildDayInput(gridRow.worker, view.date, [shift], gridRow.assignments, context);
-    const evaluation = evaluateDay(input, governing, comparison);
-    const timed = input.shifts.flatMap((one) => one.tasks);
+    const input = once(() => {
+      const readings = readingsOf(row, gridRow, lengthMin, instruments);
+      const shift: EnteredShift = {
+        id: "shift",
+        lengthMin,
+        tasks: times.tasks,
+        unaccounted,
+        readings,
+      };
+      return buildDayInput(gridRow.worker, view.date, [shift], gridRow.assignments, context);
+    });
+    const evaluation = once(() => evaluateDay(input(), governing, comparison));
+    const summary = once(() => summarizeDay(input(), evaluation(), governing));
     return {
       row,
       ...times,
-      values: {
-        localStart: times.start,
-        lengthMin: times.lengthMin,
-        tasks: times.tasks,
-        unaccounted,
-      },
+      values: { localStart: start, lengthMin, tasks: times.tasks, unaccounted },
       problems: refusals(row),
       questions: questionsOf(row, gridRow, times, evaluation, tasks),
-      input,
-      evaluation: hasOtherShift ? null : evaluation,
-      summary: hasOtherShift ? null : summarizeDay(input, evaluation, governing),
-      protectors,
-      isBare: timed.some((task) => task.protection === null && isInNoise(task, wearFromDb)),
+      get input() {
+        return input();
+      },
+      get evaluation() {
+        return hasOtherShift ? null : evaluation();
+      },
+      get summary() {
+        return hasOtherShift ? null : summary();
+      },
+      get protectors() {
+        return protectors();
+      },
+      get isBare() {
+        return input()
+          .shifts.flatMap((one) => one.tasks)
+          .some((task) => task.protection === null && isInNoise(task, wearFromDb));
+      },
       hasOtherShift,
     };
   }
@@ -234,25 +265,21 @@ function timesOf(row: RowDraft, tasks: ReadonlyMap<string, GridTask>): Times {
   };
 }
 
-function nothing(
-  row: RowDraft,
-  times: Times,
-  problems: readonly RowProblem[],
-  protectors: readonly RowProtector[],
-  hasOtherShift: boolean,
-): RowEvaluation {
-  return {
-    row,
-    ...times,
-    problems,
-    questions: [],
-    values: null,
-    input: null,
-    evaluation: null,
-    summary: null,
-    protectors,
-    isBare: false,
-    hasOtherShift,
+/** Worked out when somebody asks, and only then: most rows of a long grid are out of sight. */
+function once<T>(make: () => T): () => T {
+  let made: { value: T } | null = null;
+  return () => {
+    made ??= { value: make() };
+    return made.value;
+  };
+}
+
+function rememberEach<T>(make: (key: string) => T): (key: string) => T {
+  const known = new Map<string, T>();
+  return (key) => {
+    const value = known.get(key) ?? make(key);
+    known.set(key, value);
+    return value;
   };
 }
 
@@ -279,7 +306,7 @@ function problemsOf(
   row: RowDraft,
   gridRow: GridRow,
   times: Times,
-  view: DayGridView,
+  startOf: (time: string) => LocalInstant,
   tasks: ReadonlyMap<string, GridTask>,
 ): RowProblem[] {
   const { cells } = row;
@@ -297,7 +324,7 @@ function problemsOf(
     problems.push({ kind: "length-missing", cell: "length" });
   }
   if (start !== null) {
-    const local = atLocalTime(view.date, start, view.crew.timeZone);
+    const local = startOf(start);
     if (local.kind === "skipped")
       problems.push({ kind: "time-skipped", cell: "start", time: start });
     if (local.kind === "twice" && row.whichHour === null) {
@@ -367,7 +394,7 @@ function questionsOf(
   row: RowDraft,
   gridRow: GridRow,
   times: Times,
-  evaluation: DayEvaluation,
+  evaluate: () => DayEvaluation,
   tasks: ReadonlyMap<string, GridTask>,
 ): RowQuestion[] {
   const questions: RowQuestion[] = [];
@@ -383,10 +410,10 @@ function questionsOf(
     const cell = taskCell(taskId);
     questions.push({ kind: "long-stay", key, cell, taskName, durationMin, longestMin });
   }
-  const { readingGapDb, tasksDb, outsideDb } = evaluation;
-  const isNewReading = row.isReadingTouched && row.cells.reading?.mark === "typed";
-  if (isNewReading && readingGapDb !== null && tasksDb !== null && outsideDb !== null) {
-    if (Math.abs(readingGapDb) >= FAR_OFF_DB) {
+  if (row.isReadingTouched && row.cells.reading?.mark === "typed") {
+    const { readingGapDb, tasksDb, outsideDb } = evaluate();
+    const isKnown = readingGapDb !== null && tasksDb !== null && outsideDb !== null;
+    if (isKnown && Math.abs(readingGapDb) >= FAR_OFF_DB) {
       questions.push({
         kind: "far-off",
         key: `far-off ${outsideDb} ${tasksDb}`,

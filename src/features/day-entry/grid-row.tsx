@@ -4,18 +4,25 @@ import { formatMinutes } from "../../../shared/format/duration";
 import { formatLevel, formatLevelChange, formatLimit } from "../../../shared/format/level";
 import { editNumber } from "../../../shared/format/number";
 import type { Locale } from "../../../shared/i18n/index";
+import type { DayFigures } from "../../../shared/schemas/finding";
 import type { GridRow as GridRowView } from "../../../shared/schemas/shift";
+import {
+  AtEarFigure,
+  OutsideFigure,
+  outsideVerdict,
+  type StripFrame,
+  stripOfDay,
+} from "../../components/day-figures";
 import {
   DropStrip,
   type DropStripProps,
   StripGround,
   stripLabel,
 } from "../../components/drop-strip";
-import type { StripLimit, TargetBand } from "../../components/drop-strip-geometry";
-import { LevelFigure } from "../../components/level-figure";
 import { TextButton } from "../../components/link";
 import { ProtectorWord } from "../../components/protector-word";
-import { Verdict, VerdictShape } from "../../components/verdict";
+import { Verdict } from "../../components/verdict";
+import { useLocale } from "../../lib/i18n";
 import { type Cell, editText, numberIn, readingIn, unaccountedIn } from "./cells";
 import type { CellId, GridColumn } from "./columns";
 import type { RowEvaluation, RowProblem, RowQuestion } from "./evaluate-rows";
@@ -36,11 +43,9 @@ const STRIP_K = 1.25;
 export interface GridFrame {
   readonly columns: readonly GridColumn[];
   readonly isWide: boolean;
-  readonly limits: StripLimit[];
-  readonly targetBand: TargetBand | null;
-  readonly hasLimitAtEar: boolean;
+  readonly strip: StripFrame;
+  /** The uncertainty counts in the verdicts of this site and its rules: only then it stands beside a figure. */
   readonly showsUncertainty: boolean;
-  readonly outsideWords: (found: RowEvaluation) => string;
   readonly taskName: (id: string) => string;
 }
 
@@ -114,6 +119,9 @@ export const GridRow = memo(function GridRow(props: GridRowProps) {
           <td colSpan={typed.length}>
             <Below {...props} problems={problems} questions={questions} />
           </td>
+          <td className="strip-cell">
+            <Ground frame={frame} />
+          </td>
         </tr>
       )}
     </>
@@ -168,12 +176,7 @@ function GridCell(props: GridRowProps & { column: GridColumn; at: number }) {
     isEditing ? "is-editing" : "",
   ].join(" ");
   return (
-    <td
-      {...place(props, at)}
-      className={className}
-      aria-invalid={isSuspect || undefined}
-      aria-readonly={column.cell === null || undefined}
-    >
+    <td {...place(props, at)} className={className} aria-invalid={isSuspect || undefined}>
       {isEditing ? (
         <CellEditor
           value={editing}
@@ -217,9 +220,10 @@ function CellContent({
   cell,
   isFilled,
   found,
+  frame,
 }: GridRowProps & { column: GridColumn; cell: Cell | undefined; isFilled: boolean }) {
   const { i18n } = useLingui();
-  const locale: Locale = i18n.locale === "de" ? "de" : "en";
+  const locale = useLocale();
   switch (column.id) {
     case "unaccounted":
       return <UnaccountedContent found={found} cell={cell} isFilled={isFilled} locale={locale} />;
@@ -230,7 +234,7 @@ function CellContent({
         </span>
       );
     case "reading":
-      return <ReadingContent found={found} cell={cell} locale={locale} />;
+      return <ReadingContent found={found} cell={cell} locale={locale} isWide={frame.isWide} />;
     case "protector":
       return <ProtectorContent found={found} />;
     case "worn":
@@ -266,7 +270,7 @@ function UnaccountedContent({ found, cell, isFilled = false, locale }: ContentPr
   );
 }
 
-function ReadingContent({ found, cell, locale }: ContentProps) {
+function ReadingContent({ found, cell, locale, isWide }: ContentProps & { isWide: boolean }) {
   const { i18n } = useLingui();
   const value = readingIn(cell);
   if (cell?.text) return cell.text;
@@ -282,10 +286,14 @@ function ReadingContent({ found, cell, locale }: ContentProps) {
       </span>
       {governs && (
         <span className="under">
-          {i18n.t("tasks {level}, {gap}", {
-            level: formatLevel(evaluation.tasksDb, locale),
-            gap: formatLevelChange(evaluation.readingGapDb, locale),
-          })}
+          {isWide
+            ? i18n.t("tasks {level}, {gap}", {
+                level: formatLevel(evaluation.tasksDb, locale),
+                gap: formatLevelChange(evaluation.readingGapDb, locale),
+              })
+            : i18n.t("tasks {gap}", {
+                gap: formatLevelChange(-(evaluation.readingGapDb ?? 0), locale),
+              })}
         </span>
       )}
       {!governs && evaluation && <span className="under">{i18n.t("does not govern")}</span>}
@@ -340,126 +348,108 @@ function WornContent({ found, cell, isFilled = false, locale }: ContentProps) {
   );
 }
 
+/** A row's day in the shape in which a stored one is shown; null where nothing is worked out. */
+export function previewFigures(found: RowEvaluation, frame: GridFrame): DayFigures | null {
+  if (!found.summary) return null;
+  const { decidingTaskId: _, dosePct: __, ...figures } = found.summary;
+  const uncertaintyDb = frame.showsUncertainty ? figures.uncertaintyDb : null;
+  return { ...figures, uncertaintyDb, resultId: "", origin: "computed" };
+}
+
+const NOTHING: Omit<DropStripProps, "limits" | "targetBand" | "hasProtector"> = {
+  outsideDb: null,
+  outsideUDb: null,
+  outsideBound: "exact",
+  atEarDb: null,
+  atEarUDb: null,
+  atEarActiveDb: null,
+  atEarAsWorkedDb: null,
+  whileWornDb: null,
+  isExpected: false,
+  word: null,
+  verdict: null,
+};
+
 export function stripProps(found: RowEvaluation, frame: GridFrame): DropStripProps {
-  const { summary, protectors } = found;
-  const uncertaintyDb = frame.showsUncertainty ? (summary?.uncertaintyDb ?? null) : null;
-  return {
-    outsideDb: summary?.outsideDb ?? null,
-    outsideUDb: uncertaintyDb,
-    outsideBound: summary?.outsideBound ?? "exact",
-    atEarDb: summary?.atEarDb ?? null,
-    atEarUDb: frame.hasLimitAtEar ? uncertaintyDb : null,
-    atEarActiveDb: summary?.atEarActiveDb ?? null,
-    atEarAsWorkedDb: summary?.atEarAsWorkedDb ?? null,
-    whileWornDb: summary?.whileWornDb ?? null,
-    limits: frame.limits,
-    targetBand: frame.targetBand,
-    isExpected: false,
-    hasProtector: summary?.hasProtector ?? (protectors.length > 0 ? "unknown" : "no"),
-    word: summary?.word ?? null,
-    verdict: summary && frame.hasLimitAtEar ? summary.verdictAtEar : null,
-    decidingTask: summary?.decidingTaskName ?? undefined,
-    outsideWords: summary ? frame.outsideWords(found) : undefined,
-  };
+  const figures = previewFigures(found, frame);
+  if (figures) return stripOfDay(figures, frame.strip);
+  const { limits, targetBand } = frame.strip;
+  return { ...NOTHING, limits, targetBand, hasProtector: "unknown" };
 }
 
 function ResultCells(props: GridRowProps & { rowSpan: number | undefined; at: number }) {
   const { i18n } = useLingui();
+  const locale = useLocale();
   const { found, frame, rowSpan, at } = props;
-  const { row, summary } = found;
+  const { row } = found;
+  const figures = previewFigures(found, frame);
   const strip = stripProps(found, frame);
   const label = row.isAbsent
     ? i18n.t("Absent")
-    : summary
-      ? stripLabel(i18n, strip)
+    : figures
+      ? stripLabel(i18n, {
+          ...strip,
+          outsideWords: outsideVerdict(i18n, locale, figures).words.toLocaleLowerCase(locale),
+        })
       : found.hasOtherShift
         ? i18n.t("Worked out with the other shift of that day, when it is saved.")
         : i18n.t("Not assessed");
-  const stripCell = (
-    <td className="strip-cell" rowSpan={rowSpan}>
-      {row.isAbsent ? (
-        <StripGround limits={frame.limits} targetBand={frame.targetBand} widthPx={STRIP_WIDTH_PX} />
-      ) : (
-        <DropStrip {...strip} widthPx={STRIP_WIDTH_PX} k={STRIP_K} isHidden />
-      )}
-    </td>
-  );
   return (
     <>
       {frame.isWide && (
         <td className="at-ear" rowSpan={rowSpan} aria-hidden="true">
-          <AtEar {...props} />
+          {row.isAbsent ? (
+            "–"
+          ) : figures ? (
+            <AtEarFigure figures={figures} />
+          ) : (
+            <Verdict verdict="not-assessed" />
+          )}
         </td>
       )}
-      {stripCell}
+      <td className="strip-cell">
+        {row.isAbsent ? (
+          <Ground frame={frame} />
+        ) : (
+          <DropStrip {...strip} widthPx={STRIP_WIDTH_PX} k={STRIP_K} isHidden />
+        )}
+      </td>
       {frame.isWide && (
         <td className="outside" rowSpan={rowSpan} aria-hidden="true">
-          <Outside {...props} />
+          {figures && !row.isAbsent ? <OutsideFigure figures={figures} /> : "–"}
         </td>
       )}
       <td {...place(props, at)} className="word" rowSpan={rowSpan} aria-label={label}>
-        {!frame.isWide && <NarrowVerdict {...props} />}
-        <Word {...props} />
+        <span className="word-lines">
+          {!frame.isWide && !row.isAbsent && <NarrowVerdict figures={figures} frame={frame} />}
+          <Word {...props} />
+        </span>
       </td>
     </>
   );
 }
 
-function AtEar({ found, frame }: GridRowProps) {
+function Ground({ frame }: { frame: GridFrame }) {
+  const { limits, targetBand } = frame.strip;
+  return <StripGround limits={limits} targetBand={targetBand} widthPx={STRIP_WIDTH_PX} />;
+}
+
+function NarrowVerdict({ figures, frame }: { figures: DayFigures | null; frame: GridFrame }) {
   const { i18n } = useLingui();
-  const { row, summary } = found;
-  if (row.isAbsent) return "–";
-  if (!summary) return <Verdict verdict="not-assessed" />;
-  if (summary.atEarDb === null && frame.hasLimitAtEar) {
-    return <Verdict verdict={summary.verdictAtEar} />;
-  }
+  const locale = useLocale();
+  if (!figures) return <Verdict verdict="not-assessed" />;
+  if (frame.strip.hasLimitAtEar) return <Verdict verdict={figures.verdictAtEar} />;
+  const { verdict, words } = outsideVerdict(i18n, locale, figures);
   return (
-    <LevelFigure
-      levelDb={summary.atEarDb}
-      uncertaintyDb={frame.showsUncertainty ? summary.uncertaintyDb : null}
-      isStrong
-    >
-      {frame.hasLimitAtEar ? (
-        <Verdict verdict={summary.verdictAtEar} />
-      ) : (
-        <span className="beneath">{i18n.t("no limit at the ear")}</span>
-      )}
-    </LevelFigure>
-  );
-}
-
-function Outside({ found, frame }: GridRowProps) {
-  const { row, summary } = found;
-  if (row.isAbsent || !summary) return "–";
-  return (
-    <LevelFigure
-      levelDb={summary.outsideDb}
-      bound={summary.outsideBound}
-      uncertaintyDb={frame.showsUncertainty ? summary.uncertaintyDb : null}
-    >
-      <span className="verdict is-quiet">
-        <VerdictShape verdict={summary.verdictOutside} />
-        <span className="verdict-word">{frame.outsideWords(found)}</span>
-      </span>
-    </LevelFigure>
-  );
-}
-
-function NarrowVerdict({ found, frame }: GridRowProps) {
-  const { row, summary } = found;
-  if (row.isAbsent) return null;
-  if (!summary) return <Verdict verdict="not-assessed" />;
-  if (frame.hasLimitAtEar) return <Verdict verdict={summary.verdictAtEar} />;
-  return (
-    <Verdict verdict={summary.verdictOutside} isQuiet>
-      {frame.outsideWords(found)}
+    <Verdict verdict={verdict} isQuiet>
+      {words}
     </Verdict>
   );
 }
 
 function Word({ found, frame }: GridRowProps) {
   const { i18n } = useLingui();
-  const locale: Locale = i18n.locale === "de" ? "de" : "en";
+  const locale = useLocale();
   const { row, summary, isBare, hasOtherShift } = found;
   if (row.isAbsent) return frame.isWide ? "–" : null;
   if (hasOtherShift && found.problems.length === 0) {
@@ -470,6 +460,8 @@ function Word({ found, frame }: GridRowProps) {
     if (isBare) return <span className="is-fault">{i18n.t("No protector")}</span>;
     return frame.isWide ? <span className="beneath">{i18n.t("none needed")}</span> : null;
   }
+  // Beside a verdict that is not assessed the words would stand twice.
+  if (summary.word === null && !frame.isWide) return null;
   return (
     <ProtectorWord
       word={summary.word}
@@ -498,7 +490,7 @@ function Below({
   questions: readonly RowQuestion[];
 }) {
   const { i18n } = useLingui();
-  const locale: Locale = i18n.locale === "de" ? "de" : "en";
+  const locale = useLocale();
   const { workerId } = found.row;
   const act = (action: MendAction, words: string) => (
     <TextButton key={action} tabIndex={-1} onClick={() => onMend(workerId, action)}>

@@ -1,16 +1,17 @@
 import { useLingui } from "@lingui/react";
 import { useMemo } from "react";
+import { asReason, reasonText } from "../../../shared/findings/reasons";
 import { formatDose } from "../../../shared/format/dose";
 import { formatLevel, formatUncertainty } from "../../../shared/format/level";
 import type { GridRow } from "../../../shared/schemas/shift";
+import { outsideVerdict } from "../../components/day-figures";
 import { ShareBar } from "../../components/share-bar";
 import { useLocale } from "../../lib/i18n";
 import type { RowEvaluation } from "./evaluate-rows";
 import { withoutProtector } from "./evaluate-rows";
-import type { GridFrame } from "./grid-row";
+import { type GridFrame, previewFigures } from "./grid-row";
 import { RowForm } from "./row-form";
 import type { DayEntryState } from "./use-day-entry";
-import { reasonText } from "./words";
 
 const BARE_MIN = 10;
 
@@ -99,6 +100,7 @@ export function WorkedOut({
     .map(([id, sharePct]) => ({ label: names.get(id) ?? "", sharePct }))
     .sort((a, b) => b.sharePct - a.sharePct);
   const isWorn = summary.hasProtector === "yes";
+  const reason = asReason(summary.reason);
   return (
     <>
       {shares.length > 0 && <ShareBar shares={shares} />}
@@ -134,7 +136,7 @@ export function WorkedOut({
             {". "}
           </>
         )}
-        {reasonText(i18n, summary.reason)}
+        {reason !== null && i18n.t("Open because {reason}.", { reason: reasonText(i18n, reason) })}
       </p>
     </>
   );
@@ -143,17 +145,16 @@ export function WorkedOut({
 function Figures({ found, frame }: { found: RowEvaluation; frame: GridFrame }) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  const { summary } = found;
-  if (!summary) return null;
-  const uncertainty = frame.showsUncertainty
-    ? formatUncertainty(summary.uncertaintyDb, locale)
-    : "";
+  const figures = previewFigures(found, frame);
+  if (!figures) return null;
+  const uncertainty = formatUncertainty(figures.uncertaintyDb, locale);
   return (
     <p className="row-words">
-      {i18n.t("At the ear")} <b className="mono">{formatLevel(summary.atEarDb, locale)}</b>{" "}
+      {i18n.t("At the ear")} <b className="mono">{formatLevel(figures.atEarDb, locale)}</b>{" "}
       <span className="figure-u">{uncertainty}</span>, {i18n.t("without protection")}{" "}
-      <b className="mono">{formatLevel(summary.outsideDb, locale, summary.outsideBound)}</b>{" "}
-      <span className="figure-u">{uncertainty}</span> ({frame.outsideWords(found)}).
+      <b className="mono">{formatLevel(figures.outsideDb, locale, figures.outsideBound)}</b>{" "}
+      <span className="figure-u">{uncertainty}</span> ({outsideVerdict(i18n, locale, figures).words}
+      ).
     </p>
   );
 }

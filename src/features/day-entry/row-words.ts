@@ -1,8 +1,29 @@
 import type { I18n } from "@lingui/core";
 import type { RowState } from "./row-state";
 
-/** "row 6 does not add up". */
-export function rowStateSentence(i18n: I18n, state: RowState, row: number): string | null {
+/** Rows of one kind that are named one by one; more are counted. */
+const NAMED_ROWS = 2;
+/** What needs somebody comes first. */
+const ORDER: readonly Exclude<RowState, "saved">[] = [
+  "behind",
+  "refused",
+  "does-not-add-up",
+  "has-fault",
+  "asks",
+  "not-confirmed",
+  "ready",
+];
+
+/** "row 6 does not add up", "9 rows are not confirmed": what the rows wait for. */
+export function waitingSentences(i18n: I18n, states: readonly RowState[]): string[] {
+  return ORDER.flatMap((state) => {
+    const rows = states.flatMap((one, at) => (one === state ? [at + 1] : []));
+    if (rows.length > NAMED_ROWS) return [manySentence(i18n, state, rows.length)];
+    return rows.map((row) => oneSentence(i18n, state, row));
+  });
+}
+
+function oneSentence(i18n: I18n, state: Exclude<RowState, "saved">, row: number): string {
   switch (state) {
     case "does-not-add-up":
       return i18n.t("row {row} does not add up", { row });
@@ -17,9 +38,26 @@ export function rowStateSentence(i18n: I18n, state: RowState, row: number): stri
     case "not-confirmed":
       return i18n.t("row {row} is not confirmed", { row });
     case "ready":
-      return i18n.t("row {row} is typed", { row });
-    case "saved":
-      return null;
+      return i18n.t("row {row} is ready to be saved", { row });
+  }
+}
+
+function manySentence(i18n: I18n, state: Exclude<RowState, "saved">, count: number): string {
+  switch (state) {
+    case "does-not-add-up":
+      return i18n.t("{count} rows do not add up", { count });
+    case "has-fault":
+      return i18n.t("{count} rows need another look", { count });
+    case "asks":
+      return i18n.t("{count} rows ask something", { count });
+    case "refused":
+      return i18n.t("{count} rows were not taken", { count });
+    case "behind":
+      return i18n.t("{count} rows were saved by somebody else", { count });
+    case "not-confirmed":
+      return i18n.t("{count} rows are not confirmed", { count });
+    case "ready":
+      return i18n.t("{count} rows are ready to be saved", { count });
   }
 }
 

@@ -1,18 +1,9 @@
 import type { I18n } from "@lingui/core";
-import type {
-  MeterSettings,
-  Reason,
-  RuleSetVersion,
-  Unaccounted,
-} from "../../../shared/acoustics/types";
-import type { DaySummary } from "../../../shared/day/summarize-day";
+import type { MeterSettings, Unaccounted } from "../../../shared/acoustics/types";
 import { formatDate } from "../../../shared/format/date";
 import { formatDuration, formatMinutes } from "../../../shared/format/duration";
 import { formatLevel, formatLevelChange, formatLimit } from "../../../shared/format/level";
 import type { Locale } from "../../../shared/i18n/index";
-import { actionValueDb, mainLimit } from "../../../shared/rule-sets/index";
-import type { StripLimit, TargetBand } from "../../components/drop-strip-geometry";
-import { verdictWord } from "../../components/verdict";
 import { issueText } from "../../lib/issue-text";
 import type { CellFault, UnaccountedWords } from "./cells";
 import type { CellId, GridColumn } from "./columns";
@@ -230,116 +221,6 @@ export function questionWords(i18n: I18n, question: RowQuestion, locale: Locale)
       gap: formatLevelChange(question.gapDb, locale),
     }),
   };
-}
-
-/** Limit and target of the governing rules, as every strip of the page has them. */
-export function stripRuler(
-  i18n: I18n,
-  ruleSet: RuleSetVersion,
-  locale: Locale,
-): { limits: StripLimit[]; targetBand: TargetBand | null } {
-  const limit = mainLimit(ruleSet);
-  const levelDb = limit.levelDb ?? limit.value;
-  const action = actionValueDb(ruleSet);
-  return {
-    limits: [{ levelDb, label: i18n.t("limit {level}", { level: formatLimit(levelDb, locale) }) }],
-    targetBand:
-      action === null
-        ? null
-        : {
-            lowDb: action - 15,
-            highDb: action,
-            goodLowDb: action - 10,
-            goodHighDb: action - 5,
-          },
-  };
-}
-
-export const hasLimitAtEar = (ruleSet: RuleSetVersion): boolean =>
-  mainLimit(ruleSet).judged === "at-the-ear";
-
-/** The verdict without protection with the value that it is about: "Over 85", "Over 80, 85 open", "Under 80". */
-export function outsideWords(
-  i18n: I18n,
-  summary: DaySummary,
-  ruleSet: RuleSetVersion,
-  locale: Locale,
-): string {
-  const judged = ruleSet.criteria
-    .filter(
-      ({ judged: where, quantity }) =>
-        where === "without-protection" &&
-        (quantity === "lex-8h" || quantity === "dose" || quantity === "table-dose"),
-    )
-    .flatMap((criterion) => {
-      const result = summary.governingCriteria.find(
-        ({ criterionId }) => criterionId === criterion.id,
-      );
-      return result
-        ? [{ valueDb: criterion.levelDb ?? criterion.value, verdict: result.verdict }]
-        : [];
-    })
-    .sort((a, b) => a.valueDb - b.valueDb);
-  const level = (valueDb: number) => formatLimit(valueDb, locale);
-  const over = judged.findLast(({ verdict }) => verdict === "over");
-  const open = judged.find(
-    ({ verdict, valueDb }) =>
-      verdict !== "over" && verdict !== "under" && valueDb > (over?.valueDb ?? 0),
-  );
-  if (over && open) {
-    return i18n.t("Over {over}, {open} open", {
-      over: level(over.valueDb),
-      open: level(open.valueDb),
-    });
-  }
-  if (over) return i18n.t("Over {level}", { level: level(over.valueDb) });
-  const [lowest] = judged;
-  if (open || !lowest) return verdictWord(i18n, summary.verdictOutside);
-  return i18n.t("Under {level}", { level: level(lowest.valueDb) });
-}
-
-/** Why a verdict is open, as a sentence. */
-export function reasonText(i18n: I18n, reason: Reason | string | null): string {
-  switch (reason) {
-    case "no-tasks":
-      return i18n.t("No task is entered.");
-    case "level-missing":
-      return i18n.t("A task has no level.");
-    case "time-unknown":
-      return i18n.t("Time is not accounted for.");
-    case "only-upper-bound":
-      return i18n.t("The levels only say at most how loud it was.");
-    case "only-lower-bound":
-      return i18n.t("The levels only say at least how loud it was.");
-    case "within-uncertainty":
-      return i18n.t("The limit lies within the uncertainty.");
-    case "below-threshold":
-      return i18n.t("Everything lies below the threshold.");
-    case "no-peak":
-      return i18n.t("No peak was measured.");
-    case "peak-weighting":
-      return i18n.t("The peak was measured with another weighting.");
-    case "no-slow-maximum":
-      return i18n.t("No maximum was measured.");
-    case "wearing-unknown":
-      return i18n.t("How long the protector was worn is not known.");
-    case "no-attenuation-data":
-      return i18n.t("The protector has no data that serve here.");
-    case "combination-not-tested":
-      return i18n.t("The two together have not been tested.");
-    case "no-c-weighted-level":
-      return i18n.t("The task has no C-weighted level.");
-    case "lc-la-out-of-range":
-      return i18n.t("The difference of C and A lies outside the method.");
-    case "no-spectrum":
-      return i18n.t("The task has no octave bands.");
-    case "saturated":
-      return i18n.t("It is too loud for the active part.");
-    case "not-stated":
-      return i18n.t("The rule does not state it.");
-    default:
-      return "";
-  }
 }
 
 export function settingsText(i18n: I18n, settings: MeterSettings, locale: Locale): string {

@@ -1,10 +1,10 @@
 import { useLingui } from "@lingui/react";
 import { Button } from "../../components/button";
+import { AtEarFigure, OutsideFigure } from "../../components/day-figures";
 import { DropStrip } from "../../components/drop-strip";
-import { LevelFigure } from "../../components/level-figure";
-import { Verdict, VerdictShape } from "../../components/verdict";
+import { Verdict } from "../../components/verdict";
 import { useLocale } from "../../lib/i18n";
-import { type GridFrame, type MendAction, stripProps } from "./grid-row";
+import { type GridFrame, type MendAction, previewFigures, stripProps } from "./grid-row";
 import { RowForm } from "./row-form";
 import { WorkedOut } from "./row-panel";
 import type { RowState } from "./row-state";
@@ -33,7 +33,8 @@ export function WorkerByWorker({
   const found = entry.found[at];
   const gridRow = entry.view.rows.find(({ worker }) => worker.id === found?.row.workerId);
   if (!found || !gridRow) return null;
-  const { row, problems, questions, summary } = found;
+  const { row, problems, questions } = found;
+  const figures = previewFigures(found, frame);
   const { workerId } = row;
   const last = entry.found.length - 1;
   const confirm = () => {
@@ -71,22 +72,9 @@ export function WorkerByWorker({
       ) : (
         <>
           <div className="one-worker-result">
-            <LevelFigure levelDb={summary?.atEarDb ?? null} isStrong>
-              {frame.hasLimitAtEar || !summary ? (
-                <Verdict verdict={summary?.verdictAtEar ?? "not-assessed"} />
-              ) : (
-                <span className="beneath">{i18n.t("no limit at the ear")}</span>
-              )}
-            </LevelFigure>
+            {figures ? <AtEarFigure figures={figures} /> : <Verdict verdict="not-assessed" />}
             <DropStrip {...stripProps(found, frame)} variant="list" widthPx={160} k={1.5} />
-            <LevelFigure levelDb={summary?.outsideDb ?? null} bound={summary?.outsideBound}>
-              {summary && (
-                <span className="verdict is-quiet">
-                  <VerdictShape verdict={summary.verdictOutside} />
-                  <span className="verdict-word">{frame.outsideWords(found)}</span>
-                </span>
-              )}
-            </LevelFigure>
+            {figures && <OutsideFigure figures={figures} />}
           </div>
           {problems.map((problem) => {
             const { title, mend } = problemWords(i18n, problem, locale, frame.taskName);

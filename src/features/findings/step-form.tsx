@@ -213,7 +213,7 @@ function StepEnd({ send, label, finding, onCancel }: StepProps & { send: ReturnT
         }
       >
         {send.current && (
-          <table className="choice-table">
+          <table className="step-conflict">
             <thead>
               <tr>
                 <th scope="col">{i18n.t("Finding")}</th>

@@ -1,6 +1,6 @@
 import { useLingui } from "@lingui/react";
 import { useQueryClient } from "@tanstack/react-query";
-import { get, useFieldArray, type UseFormReturn } from "react-hook-form";
+import { get, type UseFormReturn, useFieldArray } from "react-hook-form";
 import type { z } from "zod";
 import { formatDuration } from "../../../shared/format/duration";
 import { JobInput, JobView } from "../../../shared/schemas/task";
@@ -51,7 +51,11 @@ function NominalDay({
   const { errors } = form.formState;
   const whole = get(errors, "tasks.root.message") ?? get(errors, "tasks.message");
   return (
-    <Field label={i18n.t("Nominal day")} isGroup error={typeof whole === "string" ? whole : undefined}>
+    <Field
+      label={i18n.t("Nominal day")}
+      isGroup
+      error={typeof whole === "string" ? whole : undefined}
+    >
       {() => (
         <>
           <ul className="nominal-day">
@@ -67,7 +71,9 @@ function NominalDay({
                     aria-label={i18n.t("Task {number}", { number: index + 1 })}
                     value={rows[index]?.taskId ?? ""}
                     onChange={(event) =>
-                      form.setValue(`tasks.${index}.taskId`, event.target.value, { shouldDirty: true })
+                      form.setValue(`tasks.${index}.taskId`, event.target.value, {
+                        shouldDirty: true,
+                      })
                     }
                   >
                     {tasks.map(({ value, label }) => (

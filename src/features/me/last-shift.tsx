@@ -58,13 +58,19 @@ export function lastShiftSentence(
         );
   }
   if (day.verdictAtEar === "over")
-    return i18n.t("On {day} *{level} decibels* reached your ear, over the limit of {limit}.", values);
+    return i18n.t(
+      "On {day} *{level} decibels* reached your ear, over the limit of {limit}.",
+      values,
+    );
   if (day.verdictAtEar === "cant-tell-yet")
     return i18n.t(
       "On {day} about *{level} decibels* reached your ear. It could be up to {top}, and the limit is {limit}.",
       values,
     );
-  return i18n.t("On {day} *{level} decibels* reached your ear, under the limit of {limit}.", values);
+  return i18n.t(
+    "On {day} *{level} decibels* reached your ear, under the limit of {limit}.",
+    values,
+  );
 }
 
 export function LastShift({ day }: { day: OwnDay | null }) {
@@ -83,7 +89,9 @@ export function LastShift({ day }: { day: OwnDay | null }) {
         </div>
       )}
       {day.isStale && (
-        <p className="me-note">{i18n.t("Something was corrected; this is being worked out again.")}</p>
+        <p className="me-note">
+          {i18n.t("Something was corrected; this is being worked out again.")}
+        </p>
       )}
     </>
   );

@@ -10,8 +10,8 @@ import { Verdict } from "../../components/verdict";
 import { useLocale } from "../../lib/i18n";
 import type { OwnProtector } from "./own-protectors";
 import type { OwnDay } from "./queries";
-import { nameOf } from "./what-to-do";
 import { weeksOf } from "./weeks";
+import { nameOf } from "./what-to-do";
 
 /** Over a longer time the days' ticks run into one another on a phone. */
 const LONGEST_BY_DAY = 100;
@@ -86,7 +86,9 @@ export function MyHistory({
         }
       />
       {isByWeek && (
-        <p className="me-note">{i18n.t("Each mark is the loudest day of a week. The list has every day.")}</p>
+        <p className="me-note">
+          {i18n.t("Each mark is the loudest day of a week. The list has every day.")}
+        </p>
       )}
       <div id={listId} hidden={!showsList}>
         {showsList && (
@@ -103,7 +105,10 @@ export function MyHistory({
                   {i18n.t("Around you")}
                   <span className="unit block">{i18n.t("decibels")}</span>
                 </th>
-                <th scope="col">{limitDb !== null && i18n.t("Limit {limit}", { limit: formatWholeLevel(limitDb, locale) })}</th>
+                <th scope="col">
+                  {limitDb !== null &&
+                    i18n.t("Limit {limit}", { limit: formatWholeLevel(limitDb, locale) })}
+                </th>
               </tr>
             </thead>
             <tbody>

@@ -40,7 +40,9 @@ export function MyProtectors({
                 {", "}
                 {one.useName ?? i18n.t("everywhere in noise")}
               </span>
-              {word && <span className={isFault ? "is-fault" : undefined}>{wordText(i18n, word)}</span>}
+              {word && (
+                <span className={isFault ? "is-fault" : undefined}>{wordText(i18n, word)}</span>
+              )}
             </p>
             <p className="me-note">
               {one.toDate === null

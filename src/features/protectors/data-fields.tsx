@@ -4,6 +4,7 @@ import type { z } from "zod";
 import type { NewProtectorInput } from "../../../shared/schemas/protector";
 import { BandFields } from "../../components/band-fields";
 import { DateField, Field, NumberField, TextAreaField } from "../../components/form";
+import { NumberInput } from "../../components/number-input";
 
 export type ProtectorForm = UseFormReturn<
   z.input<typeof NewProtectorInput>,
@@ -21,6 +22,56 @@ const NO_ACTIVE = {
   batteryMin: null,
 };
 
+/** The single numbers of the label, side by side as a label has them. */
+function LabelledNumbers({ form }: { form: ProtectorForm }) {
+  const { i18n } = useLingui();
+  const numbers = [
+    { key: "usRatingDb", label: i18n.t("US number") },
+    { key: "snrDb", label: i18n.t("SNR") },
+    { key: "hDb", label: i18n.t("H") },
+    { key: "mDb", label: i18n.t("M") },
+    { key: "lDb", label: i18n.t("L") },
+    { key: "slc80Db", label: i18n.t("SLC80") },
+  ] as const;
+  const messageOf = (key: (typeof numbers)[number]["key"]) =>
+    form.formState.errors.data?.[key]?.message;
+  const messages = numbers.flatMap(({ key, label }) => {
+    const message = messageOf(key);
+    return message ? [`${label}: ${message}`] : [];
+  });
+  return (
+    <Field
+      label={i18n.t("On the label, dB")}
+      isGroup
+      isOptional
+      error={messages.length > 0 ? messages.join(" ") : undefined}
+    >
+      {(wires) => (
+        <div className="band-cells is-label">
+          {numbers.map(({ key, label }) => (
+            <div key={key}>
+              <span aria-hidden="true">{label}</span>
+              <NumberInput
+                className="input band-input"
+                aria-label={`${label}, dB`}
+                aria-describedby={wires["aria-describedby"]}
+                aria-invalid={messageOf(key) ? true : undefined}
+                value={form.watch(`data.${key}`)}
+                onValue={(value) =>
+                  form.setValue(`data.${key}`, value as number | null, {
+                    shouldDirty: true,
+                    shouldValidate: form.formState.isSubmitted,
+                  })
+                }
+              />
+            </div>
+          ))}
+        </div>
+      )}
+    </Field>
+  );
+}
+
 /** What certificate and test reports say of a model, from a date on. */
 export function ProtectorDataFields({
   form,
@@ -33,25 +84,7 @@ export function ProtectorDataFields({
   const active = form.watch("data.active");
   return (
     <>
-      <NumberField
-        form={form}
-        name="data.usRatingDb"
-        label={i18n.t("US single number")}
-        unit="dB"
-        isOptional
-      />
-      <NumberField
-        form={form}
-        name="data.snrDb"
-        label={i18n.t("SNR")}
-        unit="dB"
-        isOptional
-        note={i18n.t("Never below the L of the same label.")}
-      />
-      <NumberField form={form} name="data.hDb" label={i18n.t("H")} unit="dB" isOptional />
-      <NumberField form={form} name="data.mDb" label={i18n.t("M")} unit="dB" isOptional />
-      <NumberField form={form} name="data.lDb" label={i18n.t("L")} unit="dB" isOptional />
-      <NumberField form={form} name="data.slc80Db" label={i18n.t("SLC80")} unit="dB" isOptional />
+      <LabelledNumbers form={form} />
       <BandFields
         form={form}
         name="data.bands"

@@ -1,6 +1,6 @@
 import { queryOptions, useQuery } from "@tanstack/react-query";
 import type { RoleName, SessionUser, SessionView } from "../../../shared/schemas/session";
-import { api } from "../../lib/api";
+import { api, noReply } from "../../lib/api";
 
 const isSession = (value: unknown): value is SessionView =>
   typeof value === "object" && value !== null && "user" in value && "pendingName" in value;
@@ -35,4 +35,9 @@ export async function signOut(): Promise<void> {
     schema: { parse: (value) => value as { redirectTo: string } },
   });
   window.location.assign(redirectTo);
+}
+
+/** The language chosen on this device is also that of the mails. Where it can't be kept, the choice here still holds. */
+export async function keepLanguage(language: string): Promise<void> {
+  await api.put("/me/settings", { body: { language }, schema: noReply }).catch(() => undefined);
 }

@@ -1,5 +1,5 @@
-import { infiniteQueryOptions, queryOptions, useMutation, useQueryClient } from "@tanstack/react-query";
-import { HistoryPage, SignInCodeView, type WorkerInput, WorkerPage, WorkerView } from "../../../shared/schemas/worker";
+import { infiniteQueryOptions, queryOptions, useMutation } from "@tanstack/react-query";
+import { HistoryPage, SignInCodeView, WorkerPage, WorkerView } from "../../../shared/schemas/worker";
 import { api } from "../../lib/api";
 
 export interface WorkerListFilter {
@@ -32,21 +32,6 @@ export const workerQueries = {
       getNextPageParam: ({ next }) => next ?? undefined,
     }),
 };
-
-/** A new worker, or the next revision of one. */
-export function useSaveWorker(id: string | undefined) {
-  const client = useQueryClient();
-  return useMutation({
-    mutationFn: ({ body, revision, key }: { body: WorkerInput; revision: number; key: string }) =>
-      id === undefined
-        ? api.post("/workers", { body, schema: WorkerView, idempotencyKey: key })
-        : api.put(`/workers/${id}`, { body, schema: WorkerView, ifMatch: String(revision), idempotencyKey: key }),
-    onSuccess: (worker) => {
-      client.setQueryData(workerQueries.one(worker.id).queryKey, worker);
-      return client.invalidateQueries({ queryKey: [...workerQueries.all, "list"] });
-    },
-  });
-}
 
 export function useIssueCode(id: string) {
   return useMutation({ mutationFn: () => api.post(`/workers/${id}/sign-in-codes`, { body: {}, schema: SignInCodeView }) });

@@ -1,7 +1,7 @@
 import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { useMemo } from "react";
-import { DataTable, type DataColumn } from "../../components/data-table";
+import { type DataColumn, DataTable } from "../../components/data-table";
 import type { FileColumn } from "./parse-dictionary";
 import { yearFileQueries } from "./queries";
 

@@ -1,5 +1,5 @@
 import { useLingui } from "@lingui/react";
-import { formatDay } from "../../../shared/format/date";
+import { formatShortDate } from "../../../shared/format/date";
 import { formatLevel } from "../../../shared/format/level";
 import { formatNumber } from "../../../shared/format/number";
 import type { StripFrame } from "../../components/day-figures";
@@ -67,7 +67,12 @@ export function MonthsTable({
   const [limit] = limits;
   return (
     <div className="table-frame">
-      <div className="table-scroll" role="region" aria-label={i18n.t("Months")} tabIndex={0}>
+      <section
+        className="table-scroll"
+        aria-label={i18n.t("Months")}
+        // biome-ignore lint/a11y/noNoninteractiveTabindex: wider than a phone, it has to be scrolled by keys
+        tabIndex={0}
+      >
         <table className="data-table months-table" aria-busy={months === undefined}>
           <caption className="sr-only">{i18n.t("The year by months")}</caption>
           <thead>
@@ -163,7 +168,7 @@ export function MonthsTable({
               <tr>
                 <th scope="row">
                   {isThisYear
-                    ? i18n.t("To {day}", { day: formatDay(today, locale) })
+                    ? i18n.t("To {day}", { day: formatShortDate(today, locale) })
                     : i18n.t("The year")}
                 </th>
                 {COUNTS.map((name) => (
@@ -176,7 +181,7 @@ export function MonthsTable({
             </tfoot>
           )}
         </table>
-      </div>
+      </section>
     </div>
   );
 }

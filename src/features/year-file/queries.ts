@@ -1,7 +1,7 @@
 import { queryOptions } from "@tanstack/react-query";
 import type { z } from "zod";
 import { type GapKind, GapNames, GapsView } from "../../../shared/schemas/waiting";
-import { api, ApiError } from "../../lib/api";
+import { ApiError, api } from "../../lib/api";
 import { parseDictionary } from "./parse-dictionary";
 
 export type Gap = z.infer<typeof GapKind>;

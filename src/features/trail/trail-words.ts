@@ -1,0 +1,131 @@
+import type { I18n } from "@lingui/core";
+
+/** What an event can be about. */
+export const SUBJECT_KINDS = [
+  "user",
+  "site",
+  "worker",
+  "crew",
+  "shift",
+  "run",
+  "finding",
+  "notice",
+  "protector",
+  "instrument",
+  "area",
+  "task",
+  "job",
+] as const;
+export type SubjectKind = (typeof SUBJECT_KINDS)[number];
+
+export const isSubjectKind = (value: string | null): value is SubjectKind =>
+  SUBJECT_KINDS.some((kind) => kind === value);
+
+export function subjectWord(i18n: I18n, kind: string): string {
+  switch (kind) {
+    case "user":
+      return i18n.t("Person");
+    case "site":
+      return i18n.t("Site");
+    case "worker":
+      return i18n.t("Worker");
+    case "crew":
+      return i18n.t("Crew");
+    case "shift":
+      return i18n.t("Shift");
+    case "run":
+      return i18n.t("Run");
+    case "finding":
+      return i18n.t("Finding");
+    case "notice":
+      return i18n.t("Notice");
+    case "protector":
+      return i18n.t("Protector");
+    case "instrument":
+      return i18n.t("Instrument");
+    case "area":
+      return i18n.t("Area");
+    case "task":
+      return i18n.t("Task");
+    case "job":
+      return i18n.t("Job");
+    default:
+      return kind;
+  }
+}
+
+/** What was done; what it was done to stands beside it. An action that is not known here speaks with its code. */
+export function actionWord(i18n: I18n, action: string): string {
+  switch (action) {
+    case "add-crew-member":
+      return i18n.t("Member put in");
+    case "add-crew-supervisor":
+      return i18n.t("Supervisor put in");
+    case "end-crew-membership":
+      return i18n.t("Membership ended");
+    case "end-crew-supervision":
+      return i18n.t("Supervision ended");
+    case "add-protector-revision":
+      return i18n.t("Data changed");
+    case "add-site-settings":
+      return i18n.t("Rules changed");
+    case "add-task-level":
+      return i18n.t("Level changed");
+    case "assign-protector":
+      return i18n.t("Protector assigned");
+    case "end-assignment":
+      return i18n.t("Assignment ended");
+    case "bind-worker-sign-in":
+      return i18n.t("Sign-in bound with a code");
+    case "issue-sign-in-code":
+      return i18n.t("Sign-in code issued");
+    case "revoke-user":
+      return i18n.t("Access ended");
+    case "set-own-language":
+      return i18n.t("Own language chosen");
+    case "export-year":
+      return i18n.t("Year file taken");
+    case "record-shift":
+    case "record-run":
+      return i18n.t("Recorded");
+    case "correct-shift":
+    case "correct-run":
+      return i18n.t("Corrected");
+    case "void-shift":
+    case "void-run":
+      return i18n.t("Struck out");
+    case "record-absence":
+      return i18n.t("Marked absent");
+    case "withdraw-absence":
+      return i18n.t("No longer absent");
+    case "open-finding":
+      return i18n.t("Opened");
+    case "withdraw-finding":
+      return i18n.t("Withdrawn after a correction");
+    case "report-problem":
+      return i18n.t("Problem reported");
+    case "take-in-hand-finding":
+      return i18n.t("Taken in hand");
+    case "mark-done-finding":
+      return i18n.t("Marked done");
+    case "cannot-finding":
+      return i18n.t("Can’t, because…");
+    case "reopen-finding":
+      return i18n.t("Reopened");
+    case "close-finding":
+      return i18n.t("Closed");
+    case "comment-finding":
+      return i18n.t("Comment");
+    case "send-notice":
+      return i18n.t("Sent");
+    case "hold-notice":
+      return i18n.t("Held");
+    case "send-now-notice":
+      return i18n.t("Sent at once");
+    default:
+      if (action.startsWith("create-")) return i18n.t("Added");
+      if (action.startsWith("change-")) return i18n.t("Changed");
+      if (action.startsWith("import-")) return i18n.t("Imported");
+      return action;
+  }
+}
