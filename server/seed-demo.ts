@@ -17,10 +17,16 @@ const application = connect(DATABASE_URL, { max: 4, application: "dinward-seed" 
 try {
   if (!(months >= 2 && months <= 60)) throw new Error("--months is a number from 2 to 60");
   defineModels(application);
-  const summary = await withDatedRecords(owner, () => layOutDemo({ months, now: new Date(), dataFolder: DATA_DIR, publicUrl: PUBLIC_URL }));
+  const analyze = async () => void (await owner.query("ANALYZE"));
+  const summary = await withDatedRecords(owner, () =>
+    layOutDemo({ months, now: new Date(), dataFolder: DATA_DIR, publicUrl: PUBLIC_URL, analyze }),
+  );
+  await analyze();
   console.log(summary);
 } catch (error) {
-  console.error(`Filling the demo failed: ${error instanceof Error ? (error.stack ?? error.message) : error}`);
+  console.error(
+    `Filling the demo failed: ${error instanceof Error ? (error.stack ?? error.message) : error}`,
+  );
   process.exitCode = 1;
 } finally {
   await application.close();

@@ -6,23 +6,6 @@ export interface Spread {
 const at = (sorted: readonly number[], share: number) =>
   sorted[Math.min(sorted.length - 1, Math.floor(share * sorted.length))]!;
 
-/** How long pieces of work take, in ms, after a few that warm up. */
-export async function measure(
-  times: number,
-  work: (index: number) => Promise<unknown>,
-  warmUp = 5,
-): Promise<Spread> {
-  for (let index = 0; index < warmUp; index += 1) await work(index);
-  const taken: number[] = [];
-  for (let index = 0; index < times; index += 1) {
-    const began = performance.now();
-    await work(index);
-    taken.push(performance.now() - began);
-  }
-  taken.sort((a, b) => a - b);
-  return { p50: at(taken, 0.5), p95: at(taken, 0.95) };
-}
-
 /** Both in turn, so that whatever else the machine does falls on both alike. */
 export async function measureBeside(
   times: number,

@@ -15,14 +15,25 @@ export const ASSIGNMENTS: readonly DemoAssignment[] = [
   { who: ["3984", "3985", "3991", "4002", "4005", "4011", "4016"], inner: "Alder foam" },
   { who: ["3318", "3402", "3982", "3993"], inner: "Fenmuff" },
   { who: ["3390"], inner: "Heron custom" },
-  { who: ["3315", "3340", "3352", "3367", "3371", "3388", "3390", "3402", "3411"], inner: "Sedge band", task: "Teardown" },
-  { who: ["3984", "3985", "3991", "3993", "4002", "4005", "4011", "4016"], inner: "Sedge band", task: "Teardown" },
+  {
+    who: ["3315", "3340", "3352", "3367", "3371", "3388", "3390", "3402", "3411"],
+    inner: "Sedge band",
+    task: "Teardown",
+  },
+  {
+    who: ["3984", "3985", "3991", "3993", "4002", "4005", "4011", "4016"],
+    inner: "Sedge band",
+    task: "Teardown",
+  },
   // R. Szabó's came with the agency, whose loan ended yesterday.
   { who: ["3425"], inner: "Alder foam", toDaysAgo: 1 },
   { who: ["3425"], inner: "Sedge band", task: "Teardown", toDaysAgo: 1 },
 
   // Fettling: nearly everything is above 500 Hz, and any good cup will do.
-  { who: ["4403", "4408", "4417", "4422", "4120", "4121", "4130", "4133", "4137"], inner: "Fenmuff low" },
+  {
+    who: ["4403", "4408", "4417", "4422", "4120", "4121", "4130", "4133", "4137"],
+    inner: "Fenmuff low",
+  },
   { who: ["4419", "4425", "4126"], inner: "Marsh cap" },
   { who: ["4431", "4128"], inner: "Rush level" },
   { who: ["4433"], inner: "Curlew headset" },

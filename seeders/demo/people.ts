@@ -33,30 +33,83 @@ export const WORKERS: readonly DemoWorker[] = [
   { crew: "Test cell days", number: "3390", name: "C. Marchetti", job: "Test cell hand" },
   { crew: "Test cell days", number: "3402", name: "G. Ó Riada", job: "Test cell hand" },
   { crew: "Test cell days", number: "3411", name: "Y. Tanaka-Bell", job: "Test cell hand" },
-  { crew: "Test cell days", number: "3425", name: "R. Szabó", job: "Test cell hand", ...tideway, hiredDaysAgo: 61 },
+  {
+    crew: "Test cell days",
+    number: "3425",
+    name: "R. Szabó",
+    job: "Test cell hand",
+    ...tideway,
+    hiredDaysAgo: 61,
+  },
 
-  { crew: "Test cell nights", number: "3982", name: "K. Haldorsen", job: "Test cell technician, nights" },
+  {
+    crew: "Test cell nights",
+    number: "3982",
+    name: "K. Haldorsen",
+    job: "Test cell technician, nights",
+  },
   { crew: "Test cell nights", number: "3984", name: "О. Гайдабура", job: "Test cell hand, nights" },
-  { crew: "Test cell nights", number: "3985", name: "D. Achterberg", job: "Test cell hand, nights", language: "de" },
-  { crew: "Test cell nights", number: "3991", name: "L. Ferreira-Quist", job: "Test cell hand, nights" },
-  { crew: "Test cell nights", number: "3993", name: "Δ. Καλλιέργης", job: "Test cell hand, nights" },
+  {
+    crew: "Test cell nights",
+    number: "3985",
+    name: "D. Achterberg",
+    job: "Test cell hand, nights",
+    language: "de",
+  },
+  {
+    crew: "Test cell nights",
+    number: "3991",
+    name: "L. Ferreira-Quist",
+    job: "Test cell hand, nights",
+  },
+  {
+    crew: "Test cell nights",
+    number: "3993",
+    name: "Δ. Καλλιέργης",
+    job: "Test cell hand, nights",
+  },
   { crew: "Test cell nights", number: "4002", name: "W. Pellerin", job: "Test cell hand, nights" },
   { crew: "Test cell nights", number: "4005", name: "S. Mwangale", job: "Test cell hand, nights" },
-  { crew: "Test cell nights", number: "4011", name: "F. Iturbe-Hale", job: "Test cell hand, nights" },
-  { crew: "Test cell nights", number: "4016", name: "P. Zawadny", job: "Test cell hand, nights", ...tideway, hiredDaysAgo: 250 },
+  {
+    crew: "Test cell nights",
+    number: "4011",
+    name: "F. Iturbe-Hale",
+    job: "Test cell hand, nights",
+  },
+  {
+    crew: "Test cell nights",
+    number: "4016",
+    name: "P. Zawadny",
+    job: "Test cell hand, nights",
+    ...tideway,
+    hiredDaysAgo: 250,
+  },
 
   { crew: "Fettling days", number: "4417", name: "D. Tavernor", job: "Fettler" },
   { crew: "Fettling days", number: "4403", name: "M. Dąbrowik", job: "Fettler" },
   {
-    crew: "Fettling days", number: "4408", name: "K. Nwosu-Ray", job: "Fettler", mustWear: true, personalTargetDb: 80,
-    requirementReason: "Occupational health asks for no more than 80 dB at the ear, and a protector in every noisy task. To be looked at again each spring.",
+    crew: "Fettling days",
+    number: "4408",
+    name: "K. Nwosu-Ray",
+    job: "Fettler",
+    mustWear: true,
+    personalTargetDb: 80,
+    requirementReason:
+      "Occupational health asks for no more than 80 dB at the ear, and a protector in every noisy task. To be looked at again each spring.",
   },
   { crew: "Fettling days", number: "4419", name: "S. Pettersen-Vale", job: "Fettler" },
   { crew: "Fettling days", number: "4422", name: "L. Grzelak", job: "Fettler" },
   { crew: "Fettling days", number: "4425", name: "C. Dubois-Hale", job: "Fettler" },
   { crew: "Fettling days", number: "4431", name: "渡会 沙羅", job: "Fettler" },
   { crew: "Fettling days", number: "4433", name: "H. Abdirahim", job: "Fettler" },
-  { crew: "Fettling days", number: "4440", name: "I. Brânzaru", job: "Fettler", ...larkspur, hiredDaysAgo: 12 },
+  {
+    crew: "Fettling days",
+    number: "4440",
+    name: "I. Brânzaru",
+    job: "Fettler",
+    ...larkspur,
+    hiredDaysAgo: 12,
+  },
   { crew: "Fettling days", number: "4442", name: "V. Ostrowicki", job: "Casting washer" },
   { crew: "Fettling days", number: "4447", name: "J. Penhallow", job: "Casting washer" },
 
@@ -68,13 +121,26 @@ export const WORKERS: readonly DemoWorker[] = [
   { crew: "Fettling lates", number: "4133", name: "R. Hollenkamp", job: "Fettler", language: "de" },
   { crew: "Fettling lates", number: "4137", name: "M. Trevanion", job: "Fettler" },
   { crew: "Fettling lates", number: "4139", name: "B. Uzoma-Fell", job: "Inspector" },
-  { crew: "Fettling lates", number: "4144", name: "Y. Sahakyants", job: "Casting washer", ...larkspur, hiredDaysAgo: 320, leftDaysAgo: 100 },
+  {
+    crew: "Fettling lates",
+    number: "4144",
+    name: "Y. Sahakyants",
+    job: "Casting washer",
+    ...larkspur,
+    hiredDaysAgo: 320,
+    leftDaysAgo: 100,
+  },
 
   { crew: "Plate shop days", number: "2875", name: "P. Iwanek", job: "Hammer hand" },
   { crew: "Plate shop days", number: "2877", name: "D. Quintanar", job: "Hammer hand" },
   {
-    crew: "Plate shop days", number: "2880", name: "T. Holloran-Pike", job: "Hammer hand", personalTargetDb: 85,
-    requirementReason: "Hearing test of last autumn showed a shift in both ears; protectors have to bring the day down to 85.",
+    crew: "Plate shop days",
+    number: "2880",
+    name: "T. Holloran-Pike",
+    job: "Hammer hand",
+    personalTargetDb: 85,
+    requirementReason:
+      "Hearing test of last autumn showed a shift in both ears; protectors have to bring the day down to 85.",
   },
   { crew: "Plate shop days", number: "2884", name: "S. Vang-Loret", job: "Hammer hand" },
   { crew: "Plate shop days", number: "2890", name: "E. Marrow-Finch", job: "Plater" },
@@ -84,16 +150,45 @@ export const WORKERS: readonly DemoWorker[] = [
   { crew: "Plate shop days", number: "2899", name: "K. Brandvoll", job: "Layout hand" },
   { crew: "Plate shop days", number: "2903", name: "L. Espinalba", job: "Layout hand" },
   { crew: "Plate shop days", number: "2907", name: "H. Nakasone-Reed", job: "Layout hand" },
-  { crew: "Plate shop days", number: "2911", name: "W. Tuttlebeck", job: "Layout hand", ...anvil, hiredDaysAgo: 175 },
+  {
+    crew: "Plate shop days",
+    number: "2911",
+    name: "W. Tuttlebeck",
+    job: "Layout hand",
+    ...anvil,
+    hiredDaysAgo: 175,
+  },
 
-  { crew: "Compressor and stores", number: "2951", name: "G. Fairlambe", job: "Compressor attendant" },
-  { crew: "Compressor and stores", number: "2953", name: "N. Castellan-Ruiz", job: "Compressor attendant" },
-  { crew: "Compressor and stores", number: "2954", name: "O. Przybylak", job: "Compressor attendant" },
+  {
+    crew: "Compressor and stores",
+    number: "2951",
+    name: "G. Fairlambe",
+    job: "Compressor attendant",
+  },
+  {
+    crew: "Compressor and stores",
+    number: "2953",
+    name: "N. Castellan-Ruiz",
+    job: "Compressor attendant",
+  },
+  {
+    crew: "Compressor and stores",
+    number: "2954",
+    name: "O. Przybylak",
+    job: "Compressor attendant",
+  },
   { crew: "Compressor and stores", number: "2960", name: "김서안", job: "Stores hand" },
   { crew: "Compressor and stores", number: "2961", name: "F. Dunmore-Sol", job: "Stores hand" },
   { crew: "Compressor and stores", number: "2964", name: "V. Arcenault", job: "Forklift driver" },
   { crew: "Compressor and stores", number: "2966", name: "दीपा कुलवर्णी", job: "Forklift driver" },
-  { crew: "Compressor and stores", number: "2970", name: "Z. Hartwicke", job: "Stores hand", hiredDaysAgo: 420, leftDaysAgo: 45 },
+  {
+    crew: "Compressor and stores",
+    number: "2970",
+    name: "Z. Hartwicke",
+    job: "Stores hand",
+    hiredDaysAgo: 420,
+    leftDaysAgo: 45,
+  },
 ];
 
 export interface DemoPerson {
@@ -113,32 +208,109 @@ export interface DemoPerson {
   bindsByCode?: boolean;
 }
 
-const person = (sub: string, name: string, domain: string, grants: DemoPerson["grants"], more: Partial<DemoPerson> & { note: string }): DemoPerson => ({
-  sub, name, email: `${sub}@${domain}`, emailVerified: true, language: "en", grants, ...more,
+const person = (
+  sub: string,
+  name: string,
+  domain: string,
+  grants: DemoPerson["grants"],
+  more: Partial<DemoPerson> & { note: string },
+): DemoPerson => ({
+  sub,
+  name,
+  email: `${sub}@${domain}`,
+  emailVerified: true,
+  language: "en",
+  grants,
+  ...more,
 });
 const OSTMERE = "ostmere.example";
 const KETTLE_BEND = "kettle-bend.example";
-const at = (site: SiteKey, ...roles: Role[]): DemoPerson["grants"] => roles.map((role) => ({ role, site }));
+const at = (site: SiteKey, ...roles: Role[]): DemoPerson["grants"] =>
+  roles.map((role) => ({ role, site }));
 
 export const PEOPLE: readonly DemoPerson[] = [
-  person("s.ferrand", "S. Ferrand", OSTMERE, at("ostmere", "officer"), { note: "Safety officer, Ostmere works" }),
-  person("d.calloway", "D. Calloway-Nuñez", KETTLE_BEND, at("kettle-bend", "officer"), { note: "Safety officer, Kettle Bend works" }),
-  person("b.rowntree", "B. Rowntree-Adair", OSTMERE, at("ostmere", "supervisor"), { supervises: ["Test cell days"], note: "Supervisor of Test cell days" }),
-  person("a.winterfeldt", "A. Winterfeldt", OSTMERE, at("ostmere", "supervisor"), { supervises: ["Test cell nights"], language: "de", note: "Supervisor of Test cell nights, reads German" }),
-  person("p.lanyon", "P. Lanyon-Orr", OSTMERE, at("ostmere", "supervisor"), { supervises: ["Fettling days"], note: "Supervisor of Fettling days" }),
-  person("m.trevanion", "M. Trevanion", OSTMERE, at("ostmere", "supervisor", "worker"), { supervises: ["Fettling lates"], worker: "4137", note: "Two roles: supervisor of Fettling lates and fettler there" }),
-  person("s.okonedo", "S. Okonedo-Park", KETTLE_BEND, at("kettle-bend", "supervisor"), { supervises: ["Plate shop days"], note: "Supervisor of Plate shop days" }),
-  person("l.whitcombe", "L. Whitcombe-Sayre", KETTLE_BEND, at("kettle-bend", "supervisor"), { supervises: ["Compressor and stores"], note: "Supervisor of Compressor and stores" }),
-  person("d.tavernor", "D. Tavernor", OSTMERE, at("ostmere", "worker"), { worker: "4417", note: "Worker, Fettling days; over the limit yesterday" }),
-  person("h.lindqvist", "H. Lindqvist", OSTMERE, at("ostmere", "worker"), { worker: "3367", note: "Worker, Test cell days; the muff takes too much" }),
-  person("r.hollenkamp", "R. Hollenkamp", OSTMERE, at("ostmere", "worker"), { worker: "4133", language: "de", note: "Worker, Fettling lates, reads German" }),
-  person("d.achterberg", "D. Achterberg", OSTMERE, at("ostmere", "worker"), { worker: "3985", language: "de", note: "Worker, Test cell nights, reads German" }),
-  person("p.iwanek", "P. Iwanek", KETTLE_BEND, at("kettle-bend", "worker"), { worker: "2875", note: "Worker, Plate shop days" }),
-  person("v.arcenault", "V. Arcenault", KETTLE_BEND, at("kettle-bend", "worker"), { worker: "2964", note: "Worker, Compressor and stores" }),
-  person("e.lindahl", "E. Lindahl-Osei", OSTMERE, [{ role: "auditor", site: null }], { note: "Auditor, both sites" }),
-  person("i.vandermolen", "I. Vandermolen", OSTMERE, [{ role: "administrator", site: null }], { note: "Administrator, both sites" }),
-  person("t.abernathy", "T. Abernathy-Cho", KETTLE_BEND, at("kettle-bend", "administrator", "auditor"), { note: "Administrator and auditor, Kettle Bend works only" }),
-  person("b.tremayne", "B. Tremayne", OSTMERE, at("ostmere", "worker"), { worker: "3371", emailVerified: false, note: "Granted, but the provider has not verified the e-mail: refused" }),
-  person("q.merriweather", "Q. Merriweather-Ito", OSTMERE, [], { note: "Known to the provider, granted nothing: refused" }),
-  person("n.okwuosa", "N. Okwuosa", "post.example", [], { worker: "3352", bindsByCode: true, note: "Worker without e-mail at work" }),
+  person("s.ferrand", "S. Ferrand", OSTMERE, at("ostmere", "officer"), {
+    note: "Safety officer, Ostmere works",
+  }),
+  person("d.calloway", "D. Calloway-Nuñez", KETTLE_BEND, at("kettle-bend", "officer"), {
+    note: "Safety officer, Kettle Bend works",
+  }),
+  person("b.rowntree", "B. Rowntree-Adair", OSTMERE, at("ostmere", "supervisor"), {
+    supervises: ["Test cell days"],
+    note: "Supervisor of Test cell days",
+  }),
+  person("a.winterfeldt", "A. Winterfeldt", OSTMERE, at("ostmere", "supervisor"), {
+    supervises: ["Test cell nights"],
+    language: "de",
+    note: "Supervisor of Test cell nights, reads German",
+  }),
+  person("p.lanyon", "P. Lanyon-Orr", OSTMERE, at("ostmere", "supervisor"), {
+    supervises: ["Fettling days"],
+    note: "Supervisor of Fettling days",
+  }),
+  person("m.trevanion", "M. Trevanion", OSTMERE, at("ostmere", "supervisor", "worker"), {
+    supervises: ["Fettling lates"],
+    worker: "4137",
+    note: "Two roles: supervisor of Fettling lates and fettler there",
+  }),
+  person("s.okonedo", "S. Okonedo-Park", KETTLE_BEND, at("kettle-bend", "supervisor"), {
+    supervises: ["Plate shop days"],
+    note: "Supervisor of Plate shop days",
+  }),
+  person("l.whitcombe", "L. Whitcombe-Sayre", KETTLE_BEND, at("kettle-bend", "supervisor"), {
+    supervises: ["Compressor and stores"],
+    note: "Supervisor of Compressor and stores",
+  }),
+  person("d.tavernor", "D. Tavernor", OSTMERE, at("ostmere", "worker"), {
+    worker: "4417",
+    note: "Worker, Fettling days; over the limit yesterday",
+  }),
+  person("h.lindqvist", "H. Lindqvist", OSTMERE, at("ostmere", "worker"), {
+    worker: "3367",
+    note: "Worker, Test cell days; the muff takes too much",
+  }),
+  person("r.hollenkamp", "R. Hollenkamp", OSTMERE, at("ostmere", "worker"), {
+    worker: "4133",
+    language: "de",
+    note: "Worker, Fettling lates, reads German",
+  }),
+  person("d.achterberg", "D. Achterberg", OSTMERE, at("ostmere", "worker"), {
+    worker: "3985",
+    language: "de",
+    note: "Worker, Test cell nights, reads German",
+  }),
+  person("p.iwanek", "P. Iwanek", KETTLE_BEND, at("kettle-bend", "worker"), {
+    worker: "2875",
+    note: "Worker, Plate shop days",
+  }),
+  person("v.arcenault", "V. Arcenault", KETTLE_BEND, at("kettle-bend", "worker"), {
+    worker: "2964",
+    note: "Worker, Compressor and stores",
+  }),
+  person("e.lindahl", "E. Lindahl-Osei", OSTMERE, [{ role: "auditor", site: null }], {
+    note: "Auditor, both sites",
+  }),
+  person("i.vandermolen", "I. Vandermolen", OSTMERE, [{ role: "administrator", site: null }], {
+    note: "Administrator, both sites",
+  }),
+  person(
+    "t.abernathy",
+    "T. Abernathy-Cho",
+    KETTLE_BEND,
+    at("kettle-bend", "administrator", "auditor"),
+    { note: "Administrator and auditor, Kettle Bend works only" },
+  ),
+  person("b.tremayne", "B. Tremayne", OSTMERE, at("ostmere", "worker"), {
+    worker: "3371",
+    emailVerified: false,
+    note: "Granted, but the provider has not verified the e-mail: refused",
+  }),
+  person("q.merriweather", "Q. Merriweather-Ito", OSTMERE, [], {
+    note: "Known to the provider, granted nothing: refused",
+  }),
+  person("n.okwuosa", "N. Okwuosa", "post.example", [], {
+    worker: "3352",
+    bindsByCode: true,
+    note: "Worker without e-mail at work",
+  }),
 ];

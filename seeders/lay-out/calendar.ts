@@ -3,13 +3,18 @@ import type { DemoCrew } from "../demo/programme";
 import { chance } from "./chance";
 
 const weekday = (date: string) => new Date(`${date}T00:00:00Z`).getUTCDay();
-const daysBetween = (from: string, to: string) => Math.round((Date.parse(to) - Date.parse(from)) / 86_400_000);
+const daysBetween = (from: string, to: string) =>
+  Math.round((Date.parse(to) - Date.parse(from)) / 86_400_000);
 
 /** The days of a site, from the first of the demo to the one on its clock when the demo is filled. */
 export class SiteCalendar {
   readonly today: string;
 
-  constructor(readonly timeZone: string, now: Date, readonly spanDays: number) {
+  constructor(
+    readonly timeZone: string,
+    now: Date,
+    readonly spanDays: number,
+  ) {
     this.today = localDate(now, timeZone);
   }
 
@@ -26,7 +31,7 @@ export class SiteCalendar {
     const ago = daysBetween(date, this.today);
     if (pattern === "four-on-four-off") return ago % 8 < 4;
     if (ago <= 1) return true;
-    return weekday(date) !== 0 && weekday(date) !== 6 && !isShutDown(date);
+    return weekday(date) !== 0 && weekday(date) !== 6;
   }
 
   /** The working day of a crew that lies so many working days back; 0 is today. Null where the demo begins later. */
@@ -59,8 +64,8 @@ export class SiteCalendar {
   }
 }
 
-/** Between Christmas and New Year nothing runs. */
-function isShutDown(date: string): boolean {
+/** Most are away between Christmas and New Year. */
+function isFestive(date: string): boolean {
   const day = date.slice(5);
   return day >= "12-24" || day === "01-01";
 }
@@ -69,6 +74,7 @@ function isShutDown(date: string): boolean {
 export function isAway(number: string, date: string, ago: number): boolean {
   if (ago < 9) return false;
   const week = Math.floor(Date.parse(date) / (7 * 86_400_000));
+  if (isFestive(date) && chance(number, "festive", date.slice(0, 4)) < 0.7) return true;
   return chance(number, "leave", week) < 0.08 || chance(number, "ill", date) < 0.015;
 }
 

@@ -20,7 +20,14 @@ export async function withDatedRecords<T>(owner: Sequelize, work: () => Promise<
   );
   const stamps = found as Stamp[];
   const setDefaults = (clockOf: (stamp: Stamp) => string) =>
-    owner.query(stamps.map((stamp) => `ALTER TABLE "${stamp.table}" ALTER COLUMN "${stamp.column}" SET DEFAULT ${clockOf(stamp)}`).join("; "));
+    owner.query(
+      stamps
+        .map(
+          (stamp) =>
+            `ALTER TABLE "${stamp.table}" ALTER COLUMN "${stamp.column}" SET DEFAULT ${clockOf(stamp)}`,
+        )
+        .join("; "),
+    );
   const recordedAt = `coalesce(nullif(current_setting('${RECORDED_AT}', true), '')::timestamptz, clock_timestamp())`;
   await setDefaults(() => recordedAt);
   try {

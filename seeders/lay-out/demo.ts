@@ -1,7 +1,7 @@
 import { randomUUID } from "node:crypto";
-import type { DayKey } from "../../server/queries/day-inputs";
 import { recordAudit } from "../../server/lib/audit";
 import { execute, rows } from "../../server/lib/db";
+import type { DayKey } from "../../server/queries/day-inputs";
 import { addDays } from "../../shared/time/zone";
 import { PEOPLE } from "../demo/people";
 import { INSTRUMENTS, ORGANIZATION, SITES, type SiteKey } from "../demo/programme";
@@ -17,6 +17,8 @@ const DAYS_A_MONTH = 30.4;
 /** Further back than this, days are entered and computed a week at a time. */
 const DAILY_FROM_DAYS_AGO = 21;
 const FRIDAY = 5;
+/** Soon, and again once the tables have some size. */
+const ANALYZED_AFTER_DAYS = [10, 40, 200];
 const CALIBRATION_SOON_DAYS = 7;
 
 export interface Filling {
@@ -24,6 +26,8 @@ export interface Filling {
   now: Date;
   dataFolder: string;
   publicUrl: string;
+  /** Lets the database take stock: its plans are those of empty tables until it has. */
+  analyze: () => Promise<void>;
 }
 
 const siteKeys = Object.keys(SITES) as SiteKey[];
@@ -34,35 +38,49 @@ const siteKeys = Object.keys(SITES) as SiteKey[];
  *
  * @returns a summary to print
  */
-export async function layOutDemo({ months, now, dataFolder, publicUrl }: Filling): Promise<string> {
+export async function layOutDemo({
+  months,
+  now,
+  dataFolder,
+  publicUrl,
+  analyze,
+}: Filling): Promise<string> {
   const demo = new Demo(now, Math.round(months * DAYS_A_MONTH));
   await layOutProgramme(demo);
   const story = dateStory(demo);
   const clock = demo.calendar("ostmere");
-  const morningOf = (date: string) => new Date(Math.min(clock.instant(date, "08:30").getTime(), now.getTime() - 120_000));
-  const compute = async (keys: readonly DayKey[], at: Date) => tellInThePast(demo, await computeDays(demo, keys, at), at, publicUrl);
+  const morningOf = (date: string) =>
+    new Date(Math.min(clock.instant(date, "08:30").getTime(), now.getTime() - 120_000));
+  const compute = async (keys: readonly DayKey[], at: Date) =>
+    tellInThePast(demo, await computeDays(demo, keys, at), at, publicUrl);
 
   let unstored: string[] = [];
   const storeUp = async (at: Date) => {
-    for (const site of siteKeys) await compute(await storeDays(demo, story, site, unstored, at), at);
+    for (const site of siteKeys)
+      await compute(await storeDays(demo, story, site, unstored, at), at);
     unstored = [];
   };
   const first = siteKeys.map((site) => demo.calendar(site).first).sort()[0]!;
-  const last = siteKeys.map((site) => demo.calendar(site).today).sort().at(-1)!;
+  const last = siteKeys
+    .map((site) => demo.calendar(site).today)
+    .sort()
+    .at(-1)!;
   for (let date = first; date <= last; date = addDays(date, 1)) {
+    if (ANALYZED_AFTER_DAYS.includes(daysBetween(first, date))) await analyze();
     const steps = story.steps.filter((step) => step.date === date);
     if (steps.length > 0) await storeUp(morningOf(date));
     for (const step of steps) {
       await takeStep(demo, step, now);
-      const at = new Date(Math.min(demo.calendar(step.site).instant(date, step.at).getTime(), now.getTime()) + 1_000);
+      const at = new Date(
+        Math.min(demo.calendar(step.site).instant(date, step.at).getTime(), now.getTime()) + 1_000,
+      );
       await compute(await staleDays(demo), at);
     }
-    if (daysBetween(date, last) > 1) {
-      unstored.push(date);
-      const isDue = new Date(`${date}T00:00:00Z`).getUTCDay() === FRIDAY || daysBetween(date, last) <= DAILY_FROM_DAYS_AGO;
-      if (isDue) await storeUp(morningOf(addDays(date, 1)));
-      continue;
-    }
+    unstored.push(date);
+    const isDue =
+      new Date(`${date}T00:00:00Z`).getUTCDay() === FRIDAY ||
+      daysBetween(date, last) <= DAILY_FROM_DAYS_AGO;
+    if (isDue) await storeUp(morningOf(addDays(date, 1)));
     for (const site of siteKeys) await enterDay(demo, story, site, date, now);
   }
   await tellOfCalibration(demo);
@@ -82,24 +100,45 @@ async function tellOfCalibration(demo: Demo): Promise<void> {
       await execute(
         `INSERT INTO findings (id, organization_id, site_id, instrument_id, kind, state, facts, first_date, last_date, days_count, due_on)
          VALUES ($1, $2, $3, $4, 'instrument', 'new', $5::jsonb, $6, $6, 0, $7)`,
-        [id, demo.organizationId, instrument.siteId, instrument.id, JSON.stringify({ calibrationDueOn: instrument.calibrationDueOn }), today, instrument.calibrationDueOn],
+        [
+          id,
+          demo.organizationId,
+          instrument.siteId,
+          instrument.id,
+          JSON.stringify({ calibrationDueOn: instrument.calibrationDueOn }),
+          today,
+          instrument.calibrationDueOn,
+        ],
       );
-      await execute("INSERT INTO finding_steps (organization_id, finding_id, kind, to_state) VALUES ($1, $2, 'state', 'new')", [demo.organizationId, id]);
-      await recordAudit({ organizationId: demo.organizationId }, {
-        action: "open-finding", subjectKind: "finding", subjectId: id, values: { kind: "instrument", calibrationDueOn: instrument.calibrationDueOn },
-      });
+      await execute(
+        "INSERT INTO finding_steps (organization_id, finding_id, kind, to_state) VALUES ($1, $2, 'state', 'new')",
+        [demo.organizationId, id],
+      );
+      await recordAudit(
+        { organizationId: demo.organizationId },
+        {
+          action: "open-finding",
+          subjectKind: "finding",
+          subjectId: id,
+          values: { kind: "instrument", calibrationDueOn: instrument.calibrationDueOn },
+        },
+      );
     });
   }
 }
 
 async function summarize(demo: Demo, file: string): Promise<string> {
-  const [counts] = await demo.at(new Date(), () => rows<{ shifts: number; results: number; findings: number; open: number }>(
-    `SELECT (SELECT count(*)::int FROM shifts) AS shifts, (SELECT count(*)::int FROM day_results) AS results,
+  const [counts] = await demo.at(new Date(), () =>
+    rows<{ shifts: number; results: number; findings: number; open: number }>(
+      `SELECT (SELECT count(*)::int FROM shifts) AS shifts, (SELECT count(*)::int FROM day_results) AS results,
        (SELECT count(*)::int FROM findings) AS findings, (SELECT count(*)::int FROM findings WHERE state <> 'closed') AS open`,
-  ));
+    ),
+  );
   const { shifts = 0, results = 0, findings = 0, open = 0 } = counts ?? {};
   return [
-    `${ORGANIZATION}: ${Object.values(SITES).map(({ name }) => name).join(" and ")}, from ${demo.calendar("ostmere").first} to ${demo.calendar("ostmere").today}`,
+    `${ORGANIZATION}: ${Object.values(SITES)
+      .map(({ name }) => name)
+      .join(" and ")}, from ${demo.calendar("ostmere").first} to ${demo.calendar("ostmere").today}`,
     `${shifts} shifts, ${results} results, ${findings} findings, ${open} of them open`,
     `${PEOPLE.length} people for the local sign-in in ${file}`,
   ].join("\n");

@@ -13,27 +13,54 @@ const MINUTE_MS = 60_000;
 /** A notice that never arrived, and what left two days late: to whom, and about what. */
 const TROUBLED = {
   failed: { sub: "s.okonedo", kind: "peak-or-ceiling", error: "550 5.1.1 no mailbox of that name" },
-  late: { sub: "p.lanyon", kind: "over-limit-at-ear", byMin: 2 * 24 * 60, olderThanMin: 7 * 24 * 60 },
+  late: {
+    sub: "p.lanyon",
+    kind: "over-limit-at-ear",
+    byMin: 2 * 24 * 60,
+    olderThanMin: 7 * 24 * 60,
+  },
 } as const;
 
 /**
  * What people were told in the past. The application's own command looks no further back than a month, and leaves
  * sending to its queue; this lays down the same rows as they stand once they are sent.
  */
-export async function tellInThePast(demo: Demo, opened: readonly OpenedFinding[], at: Date, publicUrl: string): Promise<void> {
+export async function tellInThePast(
+  demo: Demo,
+  opened: readonly OpenedFinding[],
+  at: Date,
+  publicUrl: string,
+): Promise<void> {
   const news = opened.filter(({ kind }) => NOTIFIED_KINDS.has(kind));
   for (const [key, ofEntry] of groupBy(news, ({ siteId, date }) => `${siteId} ${date}`)) {
     const [siteId, date] = key.split(" ") as [string, string];
     const site = [...demo.sites].find(([, { id }]) => id === siteId)![0];
-    const entered = new Date(Math.min(demo.calendar(site).instant(date, "22:30").getTime(), at.getTime()));
+    const entered = new Date(
+      Math.min(demo.calendar(site).instant(date, "22:30").getTime(), at.getTime()),
+    );
     await demo.at(entered, () => layDown(demo, site, siteId, ofEntry, entered));
   }
   await markSent(demo, at, publicUrl);
 }
 
-async function layDown(demo: Demo, site: SiteKey, siteId: string, news: readonly OpenedFinding[], entered: Date): Promise<void> {
-  const items = JSON.stringify(news.map(({ id, workerId, date, resultId }) => ({ findingId: id, workerId, date, resultId })));
-  const told = await rows<{ recipientId: string; audience: string; findingId: string; workerId: string; date: string; resultId: string }>(
+async function layDown(
+  demo: Demo,
+  site: SiteKey,
+  siteId: string,
+  news: readonly OpenedFinding[],
+  entered: Date,
+): Promise<void> {
+  const items = JSON.stringify(
+    news.map(({ id, workerId, date, resultId }) => ({ findingId: id, workerId, date, resultId })),
+  );
+  const told = await rows<{
+    recipientId: string;
+    audience: string;
+    findingId: string;
+    workerId: string;
+    date: string;
+    resultId: string;
+  }>(
     `WITH item AS (SELECT * FROM jsonb_to_recordset(CAST(:items AS jsonb)) AS x("findingId" uuid, "workerId" uuid, date date, "resultId" uuid)),
        told AS (
          SELECT i."workerId", i.date, s.user_id AS id, 'supervisor' AS audience FROM item i
@@ -45,13 +72,27 @@ async function layDown(demo: Demo, site: SiteKey, siteId: string, news: readonly
     { items, officerId: demo.officer(site).userId },
   );
   const entryId = randomUUID();
-  const notBefore = new Date(entered.getTime() + SITES[site].noticeDelayMin * MINUTE_MS).toISOString();
-  for (const [key, ofNotice] of groupBy(told, ({ recipientId, audience }) => `${recipientId} ${audience}`)) {
+  const notBefore = new Date(
+    entered.getTime() + SITES[site].noticeDelayMin * MINUTE_MS,
+  ).toISOString();
+  for (const [key, ofNotice] of groupBy(
+    told,
+    ({ recipientId, audience }) => `${recipientId} ${audience}`,
+  )) {
     const [recipientId, audience] = key.split(" ");
     const id = randomUUID();
     await execute(
       `INSERT INTO notices (id, organization_id, site_id, recipient_id, entry_id, audience, state, not_before, message_id) VALUES ($1, $2, $3, $4, $5, $6, 'waiting', $7, $8)`,
-      [id, demo.organizationId, siteId, recipientId, entryId, audience, notBefore, `<${id}@dinward>`],
+      [
+        id,
+        demo.organizationId,
+        siteId,
+        recipientId,
+        entryId,
+        audience,
+        notBefore,
+        `<${id}@dinward>`,
+      ],
     );
     await execute(
       `INSERT INTO notice_items (organization_id, notice_id, finding_id, worker_id, date, result_id)
@@ -65,7 +106,13 @@ async function layDown(demo: Demo, site: SiteKey, siteId: string, news: readonly
 export async function markSent(demo: Demo, by: Date, publicUrl: string): Promise<void> {
   const { now } = demo;
   await demo.at(by, async () => {
-    const due = await rows<{ id: string; createdAt: Date; delayMin: number; recipientId: string; kinds: string[] }>(
+    const due = await rows<{
+      id: string;
+      createdAt: Date;
+      delayMin: number;
+      recipientId: string;
+      kinds: string[];
+    }>(
       `SELECT n.id, n.created_at AS "createdAt", s.notice_delay_min AS "delayMin", n.recipient_id AS "recipientId", array_agg(f.kind) AS kinds
        FROM notices n JOIN sites s ON s.id = n.site_id JOIN notice_items i ON i.notice_id = n.id JOIN findings f ON f.id = i.finding_id
        WHERE n.state = 'waiting' AND n.created_at + make_interval(mins => s.notice_delay_min) < CAST(:by AS timestamptz) GROUP BY n.id, s.id`,
@@ -73,17 +120,33 @@ export async function markSent(demo: Demo, by: Date, publicUrl: string): Promise
     );
     for (const { id, createdAt, delayMin, recipientId, kinds } of due) {
       const mail = await noticeMail(id, publicUrl);
-      const isFor = (trouble: { sub: string; kind: string }) => known(demo.actors, trouble.sub).userId === recipientId && kinds.includes(trouble.kind);
+      const isFor = (trouble: { sub: string; kind: string }) =>
+        known(demo.actors, trouble.sub).userId === recipientId && kinds.includes(trouble.kind);
       const isFailed = isFor(TROUBLED.failed);
       const notBefore = new Date(createdAt.getTime() + delayMin * MINUTE_MS);
-      const isLate = isFor(TROUBLED.late) && now.getTime() - notBefore.getTime() > TROUBLED.late.olderThanMin * MINUTE_MS;
-      const attempted = new Date(notBefore.getTime() + (isLate ? TROUBLED.late.byMin * MINUTE_MS : 2_000));
+      const isLate =
+        isFor(TROUBLED.late) &&
+        now.getTime() - notBefore.getTime() > TROUBLED.late.olderThanMin * MINUTE_MS;
+      const attempted = new Date(
+        notBefore.getTime() + (isLate ? TROUBLED.late.byMin * MINUTE_MS : 2_000),
+      );
       await execute(
         `UPDATE notices SET state = $2, not_before = $3, attempted_at = $4, sent_at = CASE WHEN $2 = 'sent' THEN $4::timestamptz END, tries = 1,
            last_error = $5, subject = $6, body_text = $7, body_html = $8, revision = revision + 2 WHERE id = $1`,
-        [id, isFailed ? "failed" : "sent", notBefore.toISOString(), attempted.toISOString(), isFailed ? TROUBLED.failed.error : null, mail.subject, mail.text, mail.html],
+        [
+          id,
+          isFailed ? "failed" : "sent",
+          notBefore.toISOString(),
+          attempted.toISOString(),
+          isFailed ? TROUBLED.failed.error : null,
+          mail.subject,
+          mail.text,
+          mail.html,
+        ],
       );
-      await rows("SELECT graphile_worker.remove_job(:key) IS NULL AS gone", { key: `notice:${id}` });
+      await rows("SELECT graphile_worker.remove_job(:key) IS NULL AS gone", {
+        key: `notice:${id}`,
+      });
     }
   });
 }

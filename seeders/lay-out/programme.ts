@@ -25,7 +25,16 @@ import { InstrumentInput } from "../../shared/schemas/run";
 import { NewTaskInput } from "../../shared/schemas/task";
 import { ASSIGNMENTS } from "../demo/assignments";
 import { type DemoPerson, type DemoWorker, PEOPLE, WORKERS } from "../demo/people";
-import { AREAS, CREWS, INSTRUMENTS, JOBS, ORGANIZATION, SITES, type SiteKey, TASKS } from "../demo/programme";
+import {
+  AREAS,
+  CREWS,
+  INSTRUMENTS,
+  JOBS,
+  ORGANIZATION,
+  SITES,
+  type SiteKey,
+  TASKS,
+} from "../demo/programme";
 import { PROTECTORS } from "../demo/protectors";
 import { SiteCalendar } from "./calendar";
 import { RECORDED_AT } from "./clock";
@@ -45,13 +54,20 @@ export class Demo {
   readonly actors = new Map<string, Actor>();
   readonly codes = new Map<string, string>();
 
-  constructor(readonly now: Date, readonly spanDays: number) {
-    for (const key of Object.keys(SITES) as SiteKey[]) this.calendars.set(key, new SiteCalendar(SITES[key].timeZone, now, spanDays));
+  constructor(
+    readonly now: Date,
+    readonly spanDays: number,
+  ) {
+    for (const key of Object.keys(SITES) as SiteKey[])
+      this.calendars.set(key, new SiteCalendar(SITES[key].timeZone, now, spanDays));
   }
 
   /** One transaction whose records bear this time. */
   at<T>(instant: Date, work: () => Promise<T>): Promise<T> {
-    return inTransaction({ organizationId: this.organizationId, settings: { [RECORDED_AT]: instant.toISOString() } }, work);
+    return inTransaction(
+      { organizationId: this.organizationId, settings: { [RECORDED_AT]: instant.toISOString() } },
+      work,
+    );
   }
 
   calendar(site: SiteKey): SiteCalendar {
@@ -73,18 +89,32 @@ export function known<Key, Value>(map: ReadonlyMap<Key, Value>, name: Key): Valu
 const OFFICERS: Record<SiteKey, string> = { ostmere: "s.ferrand", "kettle-bend": "d.calloway" };
 const siteOfCrew = (name: string): SiteKey => CREWS.find((crew) => crew.name === name)!.site;
 export const taskKey = (site: SiteKey, name: string) => `${site} ${name}`;
-export const siteOfWorker = (number: string): SiteKey => siteOfCrew(WORKERS.find((worker) => worker.number === number)!.crew);
+export const siteOfWorker = (number: string): SiteKey =>
+  siteOfCrew(WORKERS.find((worker) => worker.number === number)!.crew);
 
 /** When the programme itself was written down: the Friday before, so to speak. */
-const setUpAt = (calendar: SiteCalendar): Date => calendar.instant(calendar.daysAgo(calendar.spanDays + 3), "10:00");
+const setUpAt = (calendar: SiteCalendar): Date =>
+  calendar.instant(calendar.daysAgo(calendar.spanDays + 3), "10:00");
 
 /** Organization, people and programme, by the application's own commands. */
 export async function layOutProgramme(demo: Demo): Promise<void> {
-  const administrator = new Actor(randomUUID(), demo.organizationId, "Setting up", null, "en", null, [
-    { role: "administrator", siteId: null }, { role: "officer", siteId: null },
-  ]);
+  const administrator = new Actor(
+    randomUUID(),
+    demo.organizationId,
+    "Setting up",
+    null,
+    "en",
+    null,
+    [
+      { role: "administrator", siteId: null },
+      { role: "officer", siteId: null },
+    ],
+  );
   await demo.at(setUpAt(demo.calendar("ostmere")), async () => {
-    await execute("INSERT INTO organizations (id, name) VALUES ($1, $2)", [demo.organizationId, ORGANIZATION]);
+    await execute("INSERT INTO organizations (id, name) VALUES ($1, $2)", [
+      demo.organizationId,
+      ORGANIZATION,
+    ]);
     await layOutSites(demo, administrator);
     await layOutWorkers(demo, administrator);
     await layOutUsers(demo, administrator);
@@ -102,30 +132,68 @@ export async function layOutProgramme(demo: Demo): Promise<void> {
 }
 
 async function layOutSites(demo: Demo, actor: Actor): Promise<void> {
-  for (const [key, { rules, ...facts }] of Object.entries(SITES) as [SiteKey, (typeof SITES)[SiteKey]][]) {
-    const settings = { wearFromDb: 85, creditsActivePart: false, usesUncertainty: false, comparisonRuleSets: [], ...rules, effectiveFrom: firstDay(demo, key) };
+  for (const [key, { rules, ...facts }] of Object.entries(SITES) as [
+    SiteKey,
+    (typeof SITES)[SiteKey],
+  ][]) {
+    const settings = {
+      wearFromDb: 85,
+      creditsActivePart: false,
+      usesUncertainty: false,
+      comparisonRuleSets: [],
+      ...rules,
+      effectiveFrom: firstDay(demo, key),
+    };
     demo.sites.set(key, await createSite(actor, { ...facts, settings }));
   }
   const siteId = (key: SiteKey) => known(demo.sites, key).id;
-  for (const { site, ...area } of AREAS) demo.areas.set(area.name, await createArea(actor, { ...area, siteId: siteId(site), isArchived: false }));
+  for (const { site, ...area } of AREAS)
+    demo.areas.set(
+      area.name,
+      await createArea(actor, { ...area, siteId: siteId(site), isArchived: false }),
+    );
   for (const { site, area, name, peakDb, samplesDb, ...level } of TASKS) {
     const areaId = area === null ? null : known(demo.areas, area).id;
     const isSampled = samplesDb.length > 0;
-    demo.tasks.set(taskKey(site, name), await createTask(actor, NewTaskInput.parse({
-      siteId: siteId(site), areaId, name,
-      level: {
-        ...level, samplesDb, peak: { levelDb: peakDb, weighting: "C" }, instrument: isSampled ? "class-1-meter" : null,
-        grade: isSampled ? "measured-group" : "task-level", effectiveFrom: firstDay(demo, site),
-      },
-    })));
+    demo.tasks.set(
+      taskKey(site, name),
+      await createTask(
+        actor,
+        NewTaskInput.parse({
+          siteId: siteId(site),
+          areaId,
+          name,
+          level: {
+            ...level,
+            samplesDb,
+            peak: { levelDb: peakDb, weighting: "C" },
+            instrument: isSampled ? "class-1-meter" : null,
+            grade: isSampled ? "measured-group" : "task-level",
+            effectiveFrom: firstDay(demo, site),
+          },
+        }),
+      ),
+    );
   }
   for (const { site, name, tasks } of JOBS) {
-    const nominal = Object.entries(tasks).map(([task, durationMin]) => ({ taskId: known(demo.tasks, taskKey(site, task)).id, durationMin }));
-    demo.jobs.set(name, await createJob(actor, { siteId: siteId(site), name, isArchived: false, tasks: nominal }));
+    const nominal = Object.entries(tasks).map(([task, durationMin]) => ({
+      taskId: known(demo.tasks, taskKey(site, task)).id,
+      durationMin,
+    }));
+    demo.jobs.set(
+      name,
+      await createJob(actor, { siteId: siteId(site), name, isArchived: false, tasks: nominal }),
+    );
   }
   for (const { site, calibrationDueInDays, ...facts } of INSTRUMENTS) {
     const calibrationDueOn = demo.calendar(site).daysAgo(-calibrationDueInDays);
-    demo.instruments.set(facts.name, await createInstrument(actor, InstrumentInput.parse({ ...facts, siteId: siteId(site), calibrationDueOn })));
+    demo.instruments.set(
+      facts.name,
+      await createInstrument(
+        actor,
+        InstrumentInput.parse({ ...facts, siteId: siteId(site), calibrationDueOn }),
+      ),
+    );
   }
 }
 
@@ -140,12 +208,23 @@ async function layOutWorkers(demo: Demo, actor: Actor): Promise<void> {
   for (const one of WORKERS) {
     const site = siteOfCrew(one.crew);
     const calendar = demo.calendar(site);
-    demo.workers.set(one.number, await createWorker(actor, {
-      siteId: known(demo.sites, site).id, jobId: known(demo.jobs, one.job).id, employeeNumber: one.number, name: one.name,
-      employer: one.employer ?? "own", employerName: one.employerName ?? null, language: one.language ?? "en",
-      hiredOn: hiredOn(calendar, one), leftOn: one.leftDaysAgo === undefined ? null : calendar.daysAgo(one.leftDaysAgo),
-      mustWear: one.mustWear ?? false, personalTargetDb: one.personalTargetDb ?? null, requirementReason: one.requirementReason ?? null,
-    }));
+    demo.workers.set(
+      one.number,
+      await createWorker(actor, {
+        siteId: known(demo.sites, site).id,
+        jobId: known(demo.jobs, one.job).id,
+        employeeNumber: one.number,
+        name: one.name,
+        employer: one.employer ?? "own",
+        employerName: one.employerName ?? null,
+        language: one.language ?? "en",
+        hiredOn: hiredOn(calendar, one),
+        leftOn: one.leftDaysAgo === undefined ? null : calendar.daysAgo(one.leftDaysAgo),
+        mustWear: one.mustWear ?? false,
+        personalTargetDb: one.personalTargetDb ?? null,
+        requirementReason: one.requirementReason ?? null,
+      }),
+    );
   }
 }
 
@@ -153,9 +232,15 @@ async function layOutUsers(demo: Demo, actor: Actor): Promise<void> {
   for (const person of PEOPLE) {
     if (person.grants.length === 0) continue;
     const { id } = await createUser(actor, {
-      name: person.name, email: person.email, expectedSubject: null, language: person.language,
+      name: person.name,
+      email: person.email,
+      expectedSubject: null,
+      language: person.language,
       workerId: person.worker ? known(demo.workers, person.worker).id : null,
-      grants: person.grants.map(({ role, site }) => ({ role, siteId: site === null ? null : known(demo.sites, site).id })),
+      grants: person.grants.map(({ role, site }) => ({
+        role,
+        siteId: site === null ? null : known(demo.sites, site).id,
+      })),
     });
     demo.actors.set(person.sub, await loadActor(id, 1));
   }
@@ -164,14 +249,31 @@ async function layOutUsers(demo: Demo, actor: Actor): Promise<void> {
 async function layOutCrews(demo: Demo): Promise<void> {
   for (const { site, name, usualStart, usualLengthMin } of CREWS) {
     const actor = demo.officer(site);
-    const crew = await createCrew(actor, { siteId: known(demo.sites, site).id, name, usualStart, usualLengthMin, isArchived: false });
+    const crew = await createCrew(actor, {
+      siteId: known(demo.sites, site).id,
+      name,
+      usualStart,
+      usualLengthMin,
+      isArchived: false,
+    });
     demo.crews.set(name, crew);
-    for (const { number } of WORKERS.filter((worker) => worker.crew === name && isStillThere(demo, worker))) {
+    for (const { number } of WORKERS.filter(
+      (worker) => worker.crew === name && isStillThere(demo, worker),
+    )) {
       const worker = known(demo.workers, number);
-      await addCrewMember(actor, crew, worker, { workerId: worker.id, fromDate: startOf(demo, site, worker), toDate: worker.leftOn, isLoan: false });
+      await addCrewMember(actor, crew, worker, {
+        workerId: worker.id,
+        fromDate: startOf(demo, site, worker),
+        toDate: worker.leftOn,
+        isLoan: false,
+      });
     }
     for (const person of PEOPLE.filter(({ supervises }) => supervises?.includes(name))) {
-      await addCrewSupervisor(actor, crew, { userId: supervisorId(demo, person), fromDate: firstDay(demo, site), toDate: null });
+      await addCrewSupervisor(actor, crew, {
+        userId: supervisorId(demo, person),
+        fromDate: firstDay(demo, site),
+        toDate: null,
+      });
     }
   }
 }
@@ -179,26 +281,45 @@ async function layOutCrews(demo: Demo): Promise<void> {
 const supervisorId = (demo: Demo, { sub }: DemoPerson) => known(demo.actors, sub).userId;
 
 /** Has not left before the demo begins: a short one may begin after somebody left. */
-const isStillThere = (demo: Demo, { leftDaysAgo }: DemoWorker): boolean => leftDaysAgo === undefined || leftDaysAgo <= demo.spanDays;
+const isStillThere = (demo: Demo, { leftDaysAgo }: DemoWorker): boolean =>
+  leftDaysAgo === undefined || leftDaysAgo <= demo.spanDays;
 
 /** The later of a worker's first day and the demo's. */
-const startOf = (demo: Demo, site: SiteKey, { hiredOn: hired }: Worker): string => (hired > firstDay(demo, site) ? hired : firstDay(demo, site));
+const startOf = (demo: Demo, site: SiteKey, { hiredOn: hired }: Worker): string =>
+  hired > firstDay(demo, site) ? hired : firstDay(demo, site);
 
 async function layOutProtectors(demo: Demo): Promise<void> {
   const actor = demo.officer("ostmere");
   // The register is the organization's: it begins where the first site does.
   const effectiveFrom = [firstDay(demo, "ostmere"), firstDay(demo, "kettle-bend")].sort()[0];
   for (const { name, kind, data } of PROTECTORS) {
-    demo.models.set(name, await createProtector(actor, NewProtectorInput.parse({ name, kind, data: { ...data, effectiveFrom } })));
+    demo.models.set(
+      name,
+      await createProtector(
+        actor,
+        NewProtectorInput.parse({ name, kind, data: { ...data, effectiveFrom } }),
+      ),
+    );
   }
   for (const { who, inner, task, toDaysAgo } of ASSIGNMENTS) {
-    for (const number of who.filter((one) => isStillThere(demo, WORKERS.find((worker) => worker.number === one)!))) {
+    for (const number of who.filter((one) =>
+      isStillThere(demo, WORKERS.find((worker) => worker.number === one)!),
+    )) {
       const worker = known(demo.workers, number);
       const site = siteOfWorker(number);
-      await assignProtector(demo.officer(site), [worker], {
-        innerModelId: known(demo.models, inner).id, outerModelId: null, taskId: task ? known(demo.tasks, taskKey(site, task)).id : null, areaId: null,
-        fromDate: startOf(demo, site, worker), toDate: toDaysAgo === undefined ? null : demo.calendar(site).daysAgo(toDaysAgo),
-      }, { field: (name) => [name], worker: (_index, name) => [number, name] });
+      await assignProtector(
+        demo.officer(site),
+        [worker],
+        {
+          innerModelId: known(demo.models, inner).id,
+          outerModelId: null,
+          taskId: task ? known(demo.tasks, taskKey(site, task)).id : null,
+          areaId: null,
+          fromDate: startOf(demo, site, worker),
+          toDate: toDaysAgo === undefined ? null : demo.calendar(site).daysAgo(toDaysAgo),
+        },
+        { field: (name) => [name], worker: (_index, name) => [number, name] },
+      );
     }
   }
 }

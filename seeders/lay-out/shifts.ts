@@ -1,7 +1,19 @@
 import type { MeterSettings } from "../../shared/acoustics/types";
 import type { ShiftTaskInput } from "../../shared/schemas/shift";
-import { CREWS, type DemoCrew, type DemoTask, ENERGY_MEAN, JOBS, AREAS, RECOMMENDED_DOSE, type SiteKey, TASKS, THRESHOLD_80, THRESHOLD_90 } from "../demo/programme";
 import { type DemoWorker, WORKERS } from "../demo/people";
+import {
+  AREAS,
+  CREWS,
+  type DemoCrew,
+  type DemoTask,
+  ENERGY_MEAN,
+  JOBS,
+  RECOMMENDED_DOSE,
+  type SiteKey,
+  TASKS,
+  THRESHOLD_80,
+  THRESHOLD_90,
+} from "../demo/programme";
 import type { DemoRun, Departure } from "../demo/story";
 import { daysBetween, isAway } from "./calendar";
 import { chance } from "./chance";
@@ -40,10 +52,13 @@ export function planDay(demo: Demo, story: DatedStory, site: SiteKey, date: stri
     const own = CREWS.find(({ name }) => name === worker.crew)!;
     if (own.site !== site || !isEmployed(demo, worker, date)) continue;
     const departure = story.departures.get(departureKey(worker.number, date));
-    const crew = departure?.onLoan ? CREWS.find(({ name }) => name === departure.onLoan!.crew)! : own;
+    const crew = departure?.onLoan
+      ? CREWS.find(({ name }) => name === departure.onLoan!.crew)!
+      : own;
     if (!calendar.works(crew, date)) continue;
     const workerId = known(demo.workers, worker.number).id;
-    if (departure?.isAbsent || (!departure && isAway(worker.number, date, ago))) day.absent.push({ worker, workerId, crew, date });
+    if (departure?.isAbsent || (!departure && isAway(worker.number, date, ago)))
+      day.absent.push({ worker, workerId, crew, date });
     else day.shifts.push(planShift(demo, worker, workerId, crew, date, departure));
   }
   addRoutineRuns(day, date, ago);
@@ -55,21 +70,51 @@ function isEmployed(demo: Demo, { number }: DemoWorker, date: string): boolean {
   return date >= hiredOn && (leftOn === null || date <= leftOn);
 }
 
-function planShift(demo: Demo, worker: DemoWorker, workerId: string, crew: DemoCrew, date: string, departure: Departure | undefined): PlannedShift {
+function planShift(
+  demo: Demo,
+  worker: DemoWorker,
+  workerId: string,
+  crew: DemoCrew,
+  date: string,
+  departure: Departure | undefined,
+): PlannedShift {
   const job = JOBS.find(({ name }) => name === (departure?.onLoan?.job ?? worker.job))!;
   const isLonger = departure?.minutes === undefined && chance(worker.number, "longer", date) < 0.04;
   const lengthMin = crew.usualLengthMin + (isLonger ? 60 : 0);
-  const minutes = departure?.minutes ? filledUp(job, lengthMin, departure.minutes) : varied(job, lengthMin, worker.number, date);
+  const minutes = departure?.minutes
+    ? filledUp(job, lengthMin, departure.minutes)
+    : varied(job, lengthMin, worker.number, date);
   const rest = departure?.leavesOutMin ?? 0;
   const tasks = Object.entries(minutes).map(([name, given]) => {
     const durationMin = name === job.rest ? given - rest : given;
-    return { name, taskId: known(demo.tasks, taskKey(crew.site, name)).id, durationMin, wornPct: worn(crew.site, name, worker.number, date, departure), wornIsShiftWide: false };
+    return {
+      name,
+      taskId: known(demo.tasks, taskKey(crew.site, name)).id,
+      durationMin,
+      wornPct: worn(crew.site, name, worker.number, date, departure),
+      wornIsShiftWide: false,
+    };
   });
-  return { worker, workerId, crew, date, lengthMin, tasks, note: departure?.note ?? null, run: departure?.run ?? null, isTold: departure !== undefined };
+  return {
+    worker,
+    workerId,
+    crew,
+    date,
+    lengthMin,
+    tasks,
+    note: departure?.note ?? null,
+    run: departure?.run ?? null,
+    isTold: departure !== undefined,
+  };
 }
 
 /** The nominal day with each task up to a tenth shorter or longer; what is left goes to the job's quiet task. */
-function varied(job: (typeof JOBS)[number], lengthMin: number, number: string, date: string): Record<string, number> {
+function varied(
+  job: (typeof JOBS)[number],
+  lengthMin: number,
+  number: string,
+  date: string,
+): Record<string, number> {
   const minutes: Record<string, number> = {};
   let left = lengthMin;
   for (const [name, nominal] of Object.entries(job.tasks)) {
@@ -78,21 +123,34 @@ function varied(job: (typeof JOBS)[number], lengthMin: number, number: string, d
     minutes[name] = isShort ? nominal : toStep(nominal * (0.9 + 0.2 * chance(number, name, date)));
     left -= minutes[name];
   }
-  return Object.fromEntries(Object.keys(job.tasks).map((name) => [name, name === job.rest ? left : minutes[name]!]));
+  return Object.fromEntries(
+    Object.keys(job.tasks).map((name) => [name, name === job.rest ? left : minutes[name]!]),
+  );
 }
 
 /** What the story gives, with the job's quiet task for the rest of the shift. */
-function filledUp({ rest }: (typeof JOBS)[number], lengthMin: number, given: Readonly<Record<string, number>>): Record<string, number> {
+function filledUp(
+  { rest }: (typeof JOBS)[number],
+  lengthMin: number,
+  given: Readonly<Record<string, number>>,
+): Record<string, number> {
   const left = lengthMin - Object.values(given).reduce((sum, minutes) => sum + minutes, 0);
   return left > 0 ? { ...given, [rest]: left } : given;
 }
 
 const tasksByKey = new Map(TASKS.map((task) => [taskKey(task.site, task.name), task]));
 const taskOf = (site: SiteKey, name: string): DemoTask => known(tasksByKey, taskKey(site, name));
-const isInNoise = ({ levelDb, area }: DemoTask) => levelDb >= 85 || AREAS.some(({ name, zone }) => name === area && zone !== "none");
+const isInNoise = ({ levelDb, area }: DemoTask) =>
+  levelDb >= 85 || AREAS.some(({ name, zone }) => name === area && zone !== "none");
 
 /** Worn throughout where it is loudest; elsewhere now and then off for a minute. Nobody is asked about quiet tasks. */
-function worn(site: SiteKey, name: string, number: string, date: string, departure: Departure | undefined): number | null {
+function worn(
+  site: SiteKey,
+  name: string,
+  number: string,
+  date: string,
+  departure: Departure | undefined,
+): number | null {
   const task = taskOf(site, name);
   if (!isInNoise(task) || departure?.worn === null) return null;
   const told = departure?.worn?.[name];
@@ -120,8 +178,13 @@ function routineRun(shift: PlannedShift): DemoRun {
   return {
     instrument: site === "ostmere" ? "Dosimeter, blue band" : "Dosimeter, red band",
     checks: [114.0, 114.0 - drift],
-    readings: site === "ostmere" ? [{ settings: ENERGY_MEAN, ...measured(shift, ENERGY_MEAN, deviationDb) }]
-      : [THRESHOLD_80, THRESHOLD_90, RECOMMENDED_DOSE].map((settings) => ({ settings, ...measured(shift, settings, deviationDb) })),
+    readings:
+      site === "ostmere"
+        ? [{ settings: ENERGY_MEAN, ...measured(shift, ENERGY_MEAN, deviationDb) }]
+        : [THRESHOLD_80, THRESHOLD_90, RECOMMENDED_DOSE].map((settings) => ({
+            settings,
+            ...measured(shift, settings, deviationDb),
+          })),
   };
 }
 
@@ -129,22 +192,44 @@ function routineRun(shift: PlannedShift): DemoRun {
 const UNSTEADY_DB = 3;
 
 /** What a dosimeter shows that has been through these tasks, a little off as instruments and days are. */
-function measured(shift: PlannedShift, settings: MeterSettings, deviationDb: number): { averageDb?: number; dosePct?: number; lasMaxDb?: number; peakDb?: number } {
+function measured(
+  shift: PlannedShift,
+  settings: MeterSettings,
+  deviationDb: number,
+): { averageDb?: number; dosePct?: number; lasMaxDb?: number; peakDb?: number } {
   const isEnergy = settings.exchangeRateDb === 3;
-  const named = shift.tasks.map(({ name, durationMin }) => ({ durationMin, task: taskOf(shift.crew.site, name) }));
+  const named = shift.tasks.map(({ name, durationMin }) => ({
+    durationMin,
+    task: taskOf(shift.crew.site, name),
+  }));
   const loudest = Math.max(...named.map(({ task }) => task.peakDb));
   let sum = 0;
   for (const { durationMin, task } of named) {
-    const offset = task.metric.kind === "lavg" && isEnergy ? UNSTEADY_DB : task.metric.kind === "laeq" && !isEnergy ? -UNSTEADY_DB : 0;
+    const offset =
+      task.metric.kind === "lavg" && isEnergy
+        ? UNSTEADY_DB
+        : task.metric.kind === "laeq" && !isEnergy
+          ? -UNSTEADY_DB
+          : 0;
     const levelDb = task.levelDb + offset + deviationDb;
     if (settings.thresholdDb !== null && levelDb < settings.thresholdDb) continue;
-    sum += durationMin * (isEnergy ? 10 ** (levelDb / 10) : 2 ** (levelDb / settings.exchangeRateDb));
+    sum +=
+      durationMin * (isEnergy ? 10 ** (levelDb / 10) : 2 ** (levelDb / settings.exchangeRateDb));
   }
   const tenth = (value: number) => Math.round(value * 10) / 10;
   if (settings.thresholdDb === null) {
-    return { averageDb: tenth(10 * Math.log10(sum / shift.lengthMin)), peakDb: tenth(loudest - 2 * Math.abs(deviationDb)) };
+    return {
+      averageDb: tenth(10 * Math.log10(sum / shift.lengthMin)),
+      peakDb: tenth(loudest - 2 * Math.abs(deviationDb)),
+    };
   }
-  const allowed = isEnergy ? 10 ** (settings.criterionLevelDb / 10) : 2 ** (settings.criterionLevelDb / settings.exchangeRateDb);
+  const allowed = isEnergy
+    ? 10 ** (settings.criterionLevelDb / 10)
+    : 2 ** (settings.criterionLevelDb / settings.exchangeRateDb);
   const slowest = Math.max(...named.map(({ task }) => task.lasMaxDb ?? task.levelDb));
-  return { dosePct: tenth((100 * sum) / (480 * allowed)), lasMaxDb: tenth(slowest - Math.abs(deviationDb)), peakDb: tenth(loudest - 2 * Math.abs(deviationDb)) };
+  return {
+    dosePct: tenth((100 * sum) / (480 * allowed)),
+    lasMaxDb: tenth(slowest - Math.abs(deviationDb)),
+    peakDb: tenth(loudest - 2 * Math.abs(deviationDb)),
+  };
 }

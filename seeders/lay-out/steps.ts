@@ -1,9 +1,9 @@
-import { correctShift } from "../../server/commands/correct-shift";
 import { addCrewMember } from "../../server/commands/add-crew-member";
 import { addProtectorRevision } from "../../server/commands/add-protector-revision";
 import { addSiteSettings } from "../../server/commands/add-site-settings";
 import { addTaskLevel } from "../../server/commands/add-task-level";
 import { assignProtector } from "../../server/commands/assign-protector";
+import { correctShift } from "../../server/commands/correct-shift";
 import { handleFinding } from "../../server/commands/handle-finding";
 import { reportProblem } from "../../server/commands/report-problem";
 import { execute } from "../../server/lib/db";
@@ -19,12 +19,17 @@ import type { About } from "../demo/story";
 import { type Demo, known, taskKey } from "./programme";
 import type { DatedStep } from "./story";
 
-const PATHS = { field: (name: string) => [name], worker: (index: number, name: string) => [index, name] };
+const PATHS = {
+  field: (name: string) => [name],
+  worker: (index: number, name: string) => [index, name],
+};
 
 /** One step of the story, by the application's own command. */
 export async function takeStep(demo: Demo, step: DatedStep, now: Date): Promise<void> {
   const calendar = demo.calendar(step.site);
-  const instant = new Date(Math.min(calendar.instant(step.date, step.at).getTime(), now.getTime() - 30_000));
+  const instant = new Date(
+    Math.min(calendar.instant(step.date, step.at).getTime(), now.getTime() - 30_000),
+  );
   await demo.at(instant, () => perform(demo, step));
 }
 
@@ -34,34 +39,69 @@ async function perform(demo: Demo, step: DatedStep): Promise<void> {
   const dateOf = (day: number) => demo.calendar(step.site).workdayAgo(crew, day)!;
   if ("assign" in step) {
     const { workers, inner, outer, task, area, toDay } = step.assign;
-    await assignProtector(actor, workers.map((number) => known(demo.workers, number)), {
-      innerModelId: known(demo.models, inner).id, outerModelId: outer ? known(demo.models, outer).id : null,
-      taskId: task ? known(demo.tasks, taskKey(step.site, task)).id : null, areaId: area ? known(demo.areas, area).id : null,
-      fromDate: step.date, toDate: toDay === undefined ? null : dateOf(toDay),
-    }, PATHS);
+    await assignProtector(
+      actor,
+      workers.map((number) => known(demo.workers, number)),
+      {
+        innerModelId: known(demo.models, inner).id,
+        outerModelId: outer ? known(demo.models, outer).id : null,
+        taskId: task ? known(demo.tasks, taskKey(step.site, task)).id : null,
+        areaId: area ? known(demo.areas, area).id : null,
+        fromDate: step.date,
+        toDate: toDay === undefined ? null : dateOf(toDay),
+      },
+      PATHS,
+    );
   } else if ("protectorData" in step) {
     const { model, data, fromDay, reason } = step.protectorData;
-    const facts = data === "as at first" ? PROTECTORS.find(({ name }) => name === model)!.data : data;
-    await addProtectorRevision(actor, known(demo.models, model), ProtectorRevisionInput.parse({ ...facts, effectiveFrom: dateOf(fromDay), reason }));
+    const facts =
+      data === "as at first" ? PROTECTORS.find(({ name }) => name === model)!.data : data;
+    await addProtectorRevision(
+      actor,
+      known(demo.models, model),
+      ProtectorRevisionInput.parse({ ...facts, effectiveFrom: dateOf(fromDay), reason }),
+    );
   } else if ("taskLevel" in step) {
     const { task, levelDb, samplesDb, reason } = step.taskLevel;
     const first = TASKS.find(({ site, name }) => site === step.site && name === task)!;
-    await addTaskLevel(actor, known(demo.tasks, taskKey(step.site, task)), TaskLevelInput.parse({
-      metric: first.metric, levelDb, samplesDb, octaveBandsDb: shifted(first.octaveBandsDb, levelDb - first.levelDb), lcMinusLaDb: first.lcMinusLaDb,
-      lasMaxDb: first.lasMaxDb, peak: { levelDb: first.peakDb, weighting: "C" }, instrument: "class-1-meter", grade: "measured-group",
-      effectiveFrom: step.date, sourceNote: first.sourceNote, reason,
-    }));
+    await addTaskLevel(
+      actor,
+      known(demo.tasks, taskKey(step.site, task)),
+      TaskLevelInput.parse({
+        metric: first.metric,
+        levelDb,
+        samplesDb,
+        octaveBandsDb: shifted(first.octaveBandsDb, levelDb - first.levelDb),
+        lcMinusLaDb: first.lcMinusLaDb,
+        lasMaxDb: first.lasMaxDb,
+        peak: { levelDb: first.peakDb, weighting: "C" },
+        instrument: "class-1-meter",
+        grade: "measured-group",
+        effectiveFrom: step.date,
+        sourceNote: first.sourceNote,
+        reason,
+      }),
+    );
   } else if ("rules" in step) {
     const { site, governing, comparison, reason } = step.rules;
     await addSiteSettings(actor, known(demo.sites, site), {
-      effectiveFrom: step.date, governingRuleSet: governing, comparisonRuleSets: [...comparison], wearFromDb: 85, creditsActivePart: false, usesUncertainty: false, reason,
+      effectiveFrom: step.date,
+      governingRuleSet: governing,
+      comparisonRuleSets: [...comparison],
+      wearFromDb: 85,
+      creditsActivePart: false,
+      usesUncertainty: false,
+      reason,
     });
   } else if ("finding" in step) {
     await handle(demo, step, await openFinding(demo, step.finding));
   } else if ("closeAll" in step) {
     const { site, criterionOf, except } = step.closeAll;
     const found = await Finding.findAll({ where: { siteId: known(demo.sites, site).id } });
-    const concerned = found.filter(({ state, kind, criterion }) => state !== "closed" && criterion.startsWith(`${criterionOf}:`) && !except.includes(kind));
+    const concerned = found.filter(
+      ({ state, kind, criterion }) =>
+        state !== "closed" && criterion.startsWith(`${criterionOf}:`) && !except.includes(kind),
+    );
     for (const finding of concerned) {
       await handleFinding(actor, finding, { kind: "close", text: step.reason }, finding.revision);
       await dateClosing(finding.id, step.date);
@@ -69,59 +109,119 @@ async function perform(demo: Demo, step: DatedStep): Promise<void> {
   } else if ("correct" in step) {
     const { worker, day, minutes, unaccounted, reason } = step.correct;
     const { shift, stored } = await shiftOf(demo, worker, dateOf(day));
-    const wornOf = (taskId: string) => stored.tasks.find((task) => task.taskId === taskId)?.wornPct ?? null;
+    const wornOf = (taskId: string) =>
+      stored.tasks.find((task) => task.taskId === taskId)?.wornPct ?? null;
     const tasks = minutes
       ? Object.entries(minutes).map(([name, durationMin]) => {
           const taskId = known(demo.tasks, taskKey(step.site, name)).id;
           return { taskId, durationMin, wornPct: wornOf(taskId), wornIsShiftWide: false };
         })
       : stored.tasks;
-    const given = unaccounted ?? (stored.how === "quiet" ? { how: "quiet" as const, levelDb: stored.quietDb! } : { how: stored.how });
-    await correctShift(actor, shift, {
-      isVoid: false, reason, confirmsWholeDay: false, localStart: stored.localStart, whichHour: null, lengthMin: stored.lengthMin, note: stored.note, tasks, unaccounted: given,
-    }, shift.revision);
+    const given =
+      unaccounted ??
+      (stored.how === "quiet"
+        ? { how: "quiet" as const, levelDb: stored.quietDb! }
+        : { how: stored.how });
+    await correctShift(
+      actor,
+      shift,
+      {
+        isVoid: false,
+        reason,
+        confirmsWholeDay: false,
+        localStart: stored.localStart,
+        whichHour: null,
+        lengthMin: stored.lengthMin,
+        note: stored.note,
+        tasks,
+        unaccounted: given,
+      },
+      shift.revision,
+    );
   } else if ("voidShift" in step) {
     const { shift } = await shiftOf(demo, step.voidShift.worker, dateOf(step.voidShift.day));
-    await correctShift(actor, shift, { isVoid: true, reason: step.voidShift.reason }, shift.revision);
+    await correctShift(
+      actor,
+      shift,
+      { isVoid: true, reason: step.voidShift.reason },
+      shift.revision,
+    );
   } else if ("loan" in step) {
     const worker = known(demo.workers, step.loan.worker);
-    await addCrewMember(actor, known(demo.crews, step.loan.crew), worker, { workerId: worker.id, fromDate: step.date, toDate: dateOf(step.loan.toDay), isLoan: true });
+    await addCrewMember(actor, known(demo.crews, step.loan.crew), worker, {
+      workerId: worker.id,
+      fromDate: step.date,
+      toDate: dateOf(step.loan.toDay),
+      isLoan: true,
+    });
   } else {
-    const id = await reportProblem(actor, known(demo.workers, step.report.worker), step.report.text);
-    await execute("UPDATE findings SET first_date = $2, last_date = $2, due_on = $3 WHERE id = $1", [id, step.date, addDays(step.date, 3)]);
+    const id = await reportProblem(
+      actor,
+      known(demo.workers, step.report.worker),
+      step.report.text,
+    );
+    await execute(
+      "UPDATE findings SET first_date = $2, last_date = $2, due_on = $3 WHERE id = $1",
+      [id, step.date, addDays(step.date, 3)],
+    );
   }
 }
 
-const shifted = (bandsDb: (typeof TASKS)[number]["octaveBandsDb"], byDb: number) => bandsDb?.map((bandDb) => (bandDb === null ? null : bandDb + byDb)) ?? null;
+const shifted = (bandsDb: (typeof TASKS)[number]["octaveBandsDb"], byDb: number) =>
+  bandsDb?.map((bandDb) => (bandDb === null ? null : bandDb + byDb)) ?? null;
 
-async function handle(demo: Demo, step: DatedStep & { step: unknown }, finding: Finding): Promise<void> {
+async function handle(
+  demo: Demo,
+  step: DatedStep & { step: unknown },
+  finding: Finding,
+): Promise<void> {
   const input = step.step as Extract<DatedStep, { step: unknown }>["step"];
   const isDated = input.kind === "take-in-hand" && "dueInDays" in input;
-  const given = isDated ? { kind: "take-in-hand" as const, dueOn: addDays(step.date, input.dueInDays) } : input;
-  await handleFinding(known(demo.actors, step.by), finding, given as Parameters<typeof handleFinding>[2], finding.revision);
+  const given = isDated
+    ? { kind: "take-in-hand" as const, dueOn: addDays(step.date, input.dueInDays) }
+    : input;
+  await handleFinding(
+    known(demo.actors, step.by),
+    finding,
+    given as Parameters<typeof handleFinding>[2],
+    finding.revision,
+  );
   if (given.kind === "close") await dateClosing(finding.id, step.date);
 }
 
 /** The command closes on the day of the clock; here that is the day of filling. */
-const dateClosing = (findingId: string, date: string) => execute("UPDATE findings SET closed_on = $2 WHERE id = $1 AND state = 'closed'", [findingId, date]);
+const dateClosing = (findingId: string, date: string) =>
+  execute("UPDATE findings SET closed_on = $2 WHERE id = $1 AND state = 'closed'", [
+    findingId,
+    date,
+  ]);
 
 /** @throws Error unless exactly one is open: the story and the engine disagree. */
 async function openFinding(demo: Demo, { worker, job, kind, criterion }: About): Promise<Finding> {
   const found = await Finding.findAll({
-    where: worker ? { workerId: known(demo.workers, worker).id, kind } : { jobId: known(demo.jobs, job!).id, kind },
+    where: worker
+      ? { workerId: known(demo.workers, worker).id, kind }
+      : { jobId: known(demo.jobs, job!).id, kind },
   });
-  const open = found.filter((finding) => finding.state !== "closed" && (criterion === undefined || finding.criterion === criterion));
-  if (open.length !== 1) throw new Error(`the story speaks of ${kind} of ${worker ?? job}, of which ${open.length} are open`);
+  const open = found.filter(
+    (finding) =>
+      finding.state !== "closed" && (criterion === undefined || finding.criterion === criterion),
+  );
+  if (open.length !== 1)
+    throw new Error(
+      `the story speaks of ${kind} of ${worker ?? job}, of which ${open.length} are open`,
+    );
   return open[0]!;
 }
 
 async function shiftOf(demo: Demo, number: string, date: string) {
   const workerId = known(demo.workers, number).id;
   const shift = await Shift.findOne({ where: { workerId, date, isVoid: false } });
-  const [stored] = await savedShifts("s.worker_id = :workerId AND s.date = :date", { workerId, date });
-  if (!shift || !stored) throw new Error(`the story speaks of a shift of ${number} on ${date}, which is not there`);
+  const [stored] = await savedShifts("s.worker_id = :workerId AND s.date = :date", {
+    workerId,
+    date,
+  });
+  if (!shift || !stored)
+    throw new Error(`the story speaks of a shift of ${number} on ${date}, which is not there`);
   return { shift, stored };
 }
-
-
-

@@ -1,6 +1,6 @@
+import { WORKERS } from "../demo/people";
 import type { SiteKey } from "../demo/programme";
 import { CREWS } from "../demo/programme";
-import { WORKERS } from "../demo/people";
 import { type Day, type Departure, STORY, type Step } from "../demo/story";
 import type { Demo } from "./programme";
 
@@ -26,7 +26,9 @@ export function dateStory(demo: Demo): DatedStory {
   const dateOf = (crewName: string, day: Day) => {
     const crew = crewOf(crewName);
     const calendar = demo.calendar(crew.site);
-    return typeof day === "number" ? calendar.workdayAgo(crew, day) : calendar.workdayIn(crew, day.in);
+    return typeof day === "number"
+      ? calendar.workdayAgo(crew, day)
+      : calendar.workdayIn(crew, day.in);
   };
   const departures = new Map<string, Departure>();
   const steps: DatedStep[] = [];
@@ -34,18 +36,28 @@ export function dateStory(demo: Demo): DatedStory {
     const dated = (chapter.departures ?? []).flatMap((departure) => {
       const own = WORKERS.find(({ number }) => number === departure.worker)!.crew;
       const crew = departure.onLoan?.crew ?? own;
-      const [from, to] = typeof departure.day === "number" ? [departure.day, departure.day] : departure.day;
-      return Array.from({ length: from - to + 1 }, (_, index) => ({ departure, date: dateOf(crew, from - index) }));
+      const [from, to] =
+        typeof departure.day === "number" ? [departure.day, departure.day] : departure.day;
+      return Array.from({ length: from - to + 1 }, (_, index) => ({
+        departure,
+        date: dateOf(crew, from - index),
+      }));
     });
-    const taken = (chapter.steps ?? []).map((step) => ({ step, date: dateOf(step.crew, step.day) }));
+    const taken = (chapter.steps ?? []).map((step) => ({
+      step,
+      date: dateOf(step.crew, step.day),
+    }));
     if ([...dated, ...taken].some(({ date }) => date === null)) continue;
     for (const { departure, date } of dated) {
       const key = departureKey(departure.worker, date!);
       if (departures.has(key)) throw new Error(`two departures of ${key}`);
       departures.set(key, departure);
     }
-    for (const { step, date } of taken) steps.push({ ...step, date: date!, site: crewOf(step.crew).site });
+    for (const { step, date } of taken)
+      steps.push({ ...step, date: date!, site: crewOf(step.crew).site });
   }
-  steps.sort((a, b) => (a.date + a.at < b.date + b.at ? -1 : a.date + a.at > b.date + b.at ? 1 : 0));
+  steps.sort((a, b) =>
+    a.date + a.at < b.date + b.at ? -1 : a.date + a.at > b.date + b.at ? 1 : 0,
+  );
   return { departures, steps };
 }

@@ -8,7 +8,7 @@ import type { SavedShiftRow } from "../queries/saved-shifts";
 
 /** What holds for a shift however it comes in: typed into a day, corrected, or imported. */
 
-export interface Employment {
+interface Employment {
   hiredOn: string;
   leftOn: string | null;
 }

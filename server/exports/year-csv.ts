@@ -7,7 +7,7 @@ import { dayPolicy } from "../policies";
 import { RecordEnds } from "./record-ends";
 import { TRAILER, YEAR_COLUMNS } from "./year-columns";
 
-export interface YearExport {
+interface YearExport {
   siteId: string;
   year: number;
   workers: "number" | "name";

@@ -4,7 +4,7 @@ import type { ImportIssue } from "../../shared/schemas/import";
 import { AppError } from "../lib/errors";
 import type { ImportColumn } from "./columns";
 
-export type Delimiter = "," | ";" | "\t";
+type Delimiter = "," | ";" | "\t";
 
 export interface CsvLine {
   line: number;

@@ -1,7 +1,7 @@
 import type { CriterionResult, RuleSetVersion } from "../acoustics/types";
 import { isPast } from "../acoustics/verdict";
 
-export interface ImportedLevels {
+interface ImportedLevels {
   /** 8-hour level without protection, dB: LEX,8h, or TWA where the rule set judges a dose. */
   outsideDb: number | null;
   atEarDb: number | null;

@@ -32,17 +32,16 @@ function splitPasted(text: string): string[] {
 }
 
 interface Fault {
-  band: number;
-  message: string;
+  readonly band: number;
+  /** Nothing where the band is only missing. */
+  readonly message: string | null;
 }
 
-function faultsOf(errors: unknown, path: string, missing: (hz: number) => string): Fault[] {
+function faultsOf(errors: unknown, path: string): Fault[] {
   return OCTAVE_BANDS_HZ.flatMap((hz, band) => {
     const found = get(errors, `${path}.${band}`) as { type?: string; message?: string } | undefined;
     if (!found?.message) return [];
-    return [
-      { band, message: found.type === "invalid_type" ? missing(hz) : `${hz} Hz: ${found.message}` },
-    ];
+    return [{ band, message: found.type === "invalid_type" ? null : `${hz} Hz: ${found.message}` }];
   });
 }
 
@@ -100,10 +99,24 @@ export function BandFields<Values extends FieldValues, Output>({
   }
 
   const { errors } = form.formState;
-  const missing = (hz: number) => i18n.t("The {hz} Hz band is missing.", { hz });
   const faults = rows.map((row) =>
-    faultsOf(errors, row.key === undefined ? name : `${name}.${row.key}`, missing),
+    faultsOf(errors, row.key === undefined ? name : `${name}.${row.key}`),
   );
+  const faultTexts = rows.flatMap((row, index) => {
+    const found = faults[index] ?? [];
+    const missing = found.filter(({ message }) => message === null);
+    return [
+      ...(missing.length > 0
+        ? [
+            i18n.t("{row}: {bands} Hz missing.", {
+              row: row.label,
+              bands: missing.map(({ band }) => OCTAVE_BANDS_HZ[band]).join(", "),
+            }),
+          ]
+        : []),
+      ...found.flatMap(({ message }) => (message === null ? [] : [message])),
+    ];
+  });
   const own = get(errors, name) as { message?: unknown } | undefined;
   const rowErrors = rows.map((row) =>
     row.key === undefined
@@ -114,7 +127,7 @@ export function BandFields<Values extends FieldValues, Output>({
     ...[own, ...rowErrors].flatMap((error) =>
       typeof error?.message === "string" ? [error.message] : [],
     ),
-    ...faults.flat().map(({ message }) => message),
+    ...faultTexts,
   ];
 
   return (

@@ -12,10 +12,10 @@ import {
 } from "../../shared/schemas/site";
 import { api } from "../lib/api";
 import { useLocale } from "../lib/i18n";
-import { problemText } from "../lib/problem-text";
 import { Button } from "./button";
 import { DataTable } from "./data-table";
 import { Empty } from "./empty";
+import { FormProblem } from "./form-problem";
 import { TextLink } from "./link";
 import { protectorWordText } from "./protector-word";
 import { Status } from "./status";
@@ -55,11 +55,15 @@ function lineWord(i18n: I18n, line: Change["line"]): string {
   }
 }
 
+interface Tally {
+  readonly line: Change["line"];
+  readonly after: string;
+  count: number;
+}
+
 /** "At the ear: 212 days become Can’t tell yet", the most frequent first. */
-function tally(
-  changes: readonly Change[],
-): { line: Change["line"]; after: string; count: number }[] {
-  const counts = new Map<string, { line: Change["line"]; after: string; count: number }>();
+function tally(changes: readonly Change[]): Tally[] {
+  const counts = new Map<string, Tally>();
   for (const { line, after } of changes) {
     const found = counts.get(`${line} ${after}`);
     if (found) found.count += 1;
@@ -67,6 +71,31 @@ function tally(
   }
   return [...counts.values()].sort((a, b) => b.count - a.count);
 }
+
+interface WorkerChange extends Omit<Change, "date"> {
+  days: number;
+  firstDate: string;
+  lastDate: string;
+}
+
+/** The same change of one worker on many days is one row. */
+function byWorker(changes: readonly Change[]): WorkerChange[] {
+  const found = new Map<string, WorkerChange>();
+  for (const { date, ...change } of changes) {
+    const key = workerChangeKey(change);
+    const row = found.get(key);
+    if (!row) found.set(key, { ...change, days: 1, firstDate: date, lastDate: date });
+    else {
+      row.days += 1;
+      if (date < row.firstDate) row.firstDate = date;
+      if (date > row.lastDate) row.lastDate = date;
+    }
+  }
+  return [...found.values()].sort((a, b) => b.days - a.days);
+}
+
+const workerChangeKey = ({ workerId, line, before, after }: Omit<Change, "date">) =>
+  `${workerId} ${line} ${before} ${after}`;
 
 /** Asks who would change verdict, before a change is made. */
 export function useChangePreview(path: string, onError?: (error: unknown) => void) {
@@ -104,20 +133,35 @@ export function ChangeReview({
   const isWhole =
     new Set(changes.map(({ workerId, date }) => `${workerId} ${date}`)).size >= changedDays;
   const many = (count: number) => formatNumber(count, 0, locale);
+  const actions = (
+    <>
+      <FormProblem error={error} />
+      <div className="review-actions">
+        <Button kind="primary" isBusy={isSaving} onClick={onSave}>
+          {i18n.t("Save and compute anew")}
+        </Button>
+        <Button onClick={onBack}>{i18n.t("Back to the form")}</Button>
+      </div>
+    </>
+  );
   return (
     <section className="section review" aria-labelledby="review-head">
       <h2 id="review-head" ref={head} tabIndex={-1}>
         {changedDays === 0
           ? i18n.t("Nobody changes verdict")
-          : i18n.t("{days, plural, one {# day changes verdict} other {# days change verdict}}", {
-              days: changedDays,
-            })}
+          : i18n.t(
+              "{days, plural, one {# day changes verdict} other {{figure} days change verdict}}",
+              {
+                days: changedDays,
+                figure: many(changedDays),
+              },
+            )}
       </h2>
       <p className="review-lead">
         {what}{" "}
         {i18n.t(
-          "{days, plural, one {# day} other {# days}} of {workers, plural, one {# worker} other {# workers}} rest on this and are computed anew.",
-          { days, workers },
+          "{days, plural, one {# day} other {{figure} days}} of {workers, plural, one {# worker} other {# workers}} rest on this and are computed anew.",
+          { days, workers, figure: many(days) },
         )}
         {tooMany > 0 &&
           ` ${i18n.t("{count} earlier days were not looked at here; they are computed anew as well.", { count: many(tooMany) })}`}
@@ -145,67 +189,70 @@ export function ChangeReview({
               </li>
             ))}
           </ul>
-          <DataTable
+          {actions}
+          <h3 className="mt-7 mb-1">{i18n.t("Who changes verdict")}</h3>
+          <DataTable<WorkerChange>
             caption={i18n.t("Who changes verdict")}
-            rows={changes}
-            rowKey={(change) => `${change.workerId} ${change.date} ${change.line}`}
+            rows={byWorker(changes)}
+            rowKey={workerChangeKey}
             columns={[
               {
                 id: "worker",
                 head: i18n.t("Worker"),
                 isRowHead: true,
-                sortValue: (change) => change.workerName,
-                cell: (change) => (
-                  <TextLink to={workerPath(change.workerId, change.date)}>
-                    {change.workerName}
-                  </TextLink>
+                sortValue: (row) => row.workerName,
+                cell: (row) => (
+                  <TextLink to={workerPath(row.workerId, row.lastDate)}>{row.workerName}</TextLink>
                 ),
-              },
-              {
-                id: "date",
-                head: i18n.t("Day"),
-                sortValue: (change) => change.date,
-                cell: (change) => formatShortDate(change.date, locale),
               },
               {
                 id: "line",
                 head: i18n.t("Judged"),
-                sortValue: (change) => change.line,
-                cell: (change) => lineWord(i18n, change.line),
+                sortValue: (row) => row.line,
+                cell: (row) => lineWord(i18n, row.line),
               },
               {
                 id: "before",
                 head: i18n.t("Now"),
-                sortValue: (change) => change.before,
-                cell: (change) => stateWord(i18n, change.before),
+                sortValue: (row) => row.before,
+                cell: (row) => stateWord(i18n, row.before),
               },
               {
                 id: "after",
                 head: i18n.t("Then"),
-                sortValue: (change) => change.after,
-                cell: (change) => <b>{stateWord(i18n, change.after)}</b>,
+                sortValue: (row) => row.after,
+                cell: (row) => <b>{stateWord(i18n, row.after)}</b>,
+              },
+              {
+                id: "days",
+                head: i18n.t("Days"),
+                kind: "figure",
+                sortValue: (row) => row.days,
+                cell: (row) => row.days,
+              },
+              {
+                id: "dates",
+                head: i18n.t("From, to"),
+                sortValue: (row) => row.lastDate,
+                cell: (row) =>
+                  row.firstDate === row.lastDate
+                    ? formatShortDate(row.lastDate, locale)
+                    : i18n.t("{from} to {to}", {
+                        from: formatShortDate(row.firstDate, locale),
+                        to: formatShortDate(row.lastDate, locale),
+                      }),
               },
             ]}
           />
           {!isWhole && (
             <p className="table-foot">
-              {i18n.t("The latest {count} changes are listed.", { count: changes.length })}
+              {i18n.t("The latest {count} of these changes are listed.", { count: changes.length })}
             </p>
           )}
         </>
       )}
       {changes.length === 0 && days === 0 && <Empty title={i18n.t("No day rests on this yet.")} />}
-      {error !== null && error !== undefined && (
-        <p className="field-error" role="alert">
-          {problemText(i18n, error)}
-        </p>
-      )}
-      <div className="review-actions">
-        <Button kind="primary" isBusy={isSaving} onClick={onSave}>
-          {i18n.t("Save and compute anew")}
-        </Button>
-        <Button onClick={onBack}>{i18n.t("Back to the form")}</Button>
-      </div>
+      {changes.length === 0 && actions}
     </section>
   );
 }

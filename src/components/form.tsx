@@ -517,7 +517,15 @@ export function SubmitButton({
   children: ReactNode;
 }) {
   return (
-    <Button type="submit" kind="primary" isBusy={isBusy} size={size}>
+    <Button
+      type="submit"
+      kind="primary"
+      isBusy={isBusy}
+      size={size}
+      // Leaving a field may take its error away, and the button from under the pointer: the focus follows on release.
+      onMouseDown={(event) => event.preventDefault()}
+      onMouseUp={(event) => event.currentTarget.focus()}
+    >
       {children}
     </Button>
   );

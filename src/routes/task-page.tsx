@@ -97,9 +97,13 @@ export function Component() {
             </MarginNote>
             <MarginNote title={i18n.t("Rest on it")}>
               <p>
-                {i18n.t("{count, plural, =0 {no shift yet} one {# shift} other {# shifts}}", {
-                  count: task.shiftsCount,
-                })}
+                {i18n.t(
+                  "{count, plural, =0 {no shift yet} one {# shift} other {{figure} shifts}}",
+                  {
+                    count: task.shiftsCount,
+                    figure: formatNumber(task.shiftsCount, 0, locale),
+                  },
+                )}
               </p>
             </MarginNote>
           </>

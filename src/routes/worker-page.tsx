@@ -167,12 +167,12 @@ function LastDay({ worker }: { worker: WorkerView }) {
     <section className="last-day-block" aria-label={i18n.t("Last day")}>
       <div className="last-day">
         <AtEarFigure figures={last} />
-        <span>
+        <span className="last-day-strip">
           <TableStripScale frame={frame} />
           <DayStrip figures={last} variant="list" />
         </span>
         <OutsideFigure figures={last} />
-        <span className="two-lines">
+        <span className="two-lines last-day-words">
           <TextLink to={paths.result(worker.id, last.date)}>{i18n.t("{date}: how", { date: formatDate(last.date, locale) })}</TextLink>
           <DayProtector day={last} />
         </span>

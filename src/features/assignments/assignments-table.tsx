@@ -74,7 +74,7 @@ export function AssignmentsTable({
   return (
     <>
       <DataTable
-        caption={i18n.t("Protectors by use")}
+        caption={i18n.t("Protectors, with use and dates")}
         columns={columns}
         rows={sorted}
         rowKey={({ id }) => id}

@@ -153,7 +153,10 @@ function Question({
           aria-invalid={isEmpty || undefined}
           aria-describedby={isEmpty ? `${id}-error` : undefined}
           value={text}
-          onChange={(event) => setText(event.target.value)}
+          onChange={(event) => {
+            setText(event.target.value);
+            setIsEmpty(false);
+          }}
         />
         {isEmpty && (
           <p className="field-error" id={`${id}-error`}>

@@ -132,7 +132,10 @@ export function OrderActions({
             aria-invalid={isTooShort || undefined}
             aria-describedby={isTooShort ? `${id}-error` : undefined}
             value={text}
-            onChange={(event) => setText(event.target.value)}
+            onChange={(event) => {
+              setText(event.target.value);
+              setIsTooShort(false);
+            }}
           />
           {isTooShort && (
             <p className="field-error" id={`${id}-error`}>

@@ -1,6 +1,6 @@
 import { useLingui } from "@lingui/react";
 import { useId, useState } from "react";
-import { formatDay, formatMonth } from "../../../shared/format/date";
+import { formatMonth, formatShortDate } from "../../../shared/format/date";
 import { formatWholeLevel } from "../../../shared/format/level";
 import { useStripFrame } from "../../components/day-figures";
 import { Empty } from "../../components/empty";
@@ -114,7 +114,7 @@ export function MyHistory({
             <tbody>
               {days.slice(0, rowCount).map((day) => (
                 <tr key={day.date}>
-                  <th scope="row">{formatDay(day.date, locale)}</th>
+                  <th scope="row">{formatShortDate(day.date, locale)}</th>
                   <td className="is-figure">{formatWholeLevel(day.atEarDb, locale)}</td>
                   <td className="is-figure">{formatWholeLevel(day.outsideDb, locale)}</td>
                   <td>{limitDb !== null && <Verdict verdict={day.verdictAtEar} />}</td>

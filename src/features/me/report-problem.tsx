@@ -56,7 +56,10 @@ export function ReportProblem({ workerId }: { workerId: string }) {
             aria-invalid={isTooShort || undefined}
             aria-describedby={isTooShort ? `${id}-error` : undefined}
             value={text}
-            onChange={(event) => setText(event.target.value)}
+            onChange={(event) => {
+              setText(event.target.value);
+              setIsTooShort(false);
+            }}
           />
           {isTooShort && (
             <p className="field-error" id={`${id}-error`}>

@@ -10,7 +10,7 @@ import { useEndAccess } from "./queries";
 export function EndAccess({ person, onEnded }: { person: UserView; onEnded: () => void }) {
   const { i18n } = useLingui();
   const [isAsking, setIsAsking] = useState(false);
-  const end = useEndAccess(person.id);
+  const end = useEndAccess(person.id, onEnded);
   const close = () => {
     setIsAsking(false);
     end.reset();
@@ -30,14 +30,7 @@ export function EndAccess({ person, onEnded }: { person: UserView; onEnded: () =
             <Button
               kind="primary"
               isBusy={end.isPending}
-              onClick={() =>
-                end.mutate(person.revision, {
-                  onSuccess: () => {
-                    close();
-                    onEnded();
-                  },
-                })
-              }
+              onClick={() => end.mutate(person.revision)}
             >
               {i18n.t("End access")}
             </Button>

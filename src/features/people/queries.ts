@@ -37,11 +37,13 @@ export async function searchWorkers(
   }));
 }
 
-export function useEndAccess(id: string) {
+export function useEndAccess(id: string, onEnded: () => void) {
   const client = useQueryClient();
   return useMutation({
     mutationFn: (revision: number) =>
       api.post(`/users/${id}/revoke`, { body: {}, ifMatch: String(revision), schema: UserView }),
+    // Here and not where it is called: the list read anew takes the button away, and its callbacks with it.
+    onSuccess: onEnded,
     onSettled: () => client.invalidateQueries({ queryKey: peopleQueries.all }),
   });
 }

@@ -77,7 +77,7 @@ export function AttenuationByBand({ bands }: { bands: ProtectorFacts["bands"] })
           },
           {
             id: "assumed",
-            head: i18n.t("Mean less one"),
+            head: i18n.t("Mean less deviation"),
             unit: "dB",
             kind: "figure",
             cell: ({ meanDb, sdDb }) =>

@@ -1,6 +1,7 @@
 import { useLingui } from "@lingui/react";
 import type { Criterion, RuleSetVersion } from "../../../shared/acoustics/types";
 import { DataTable } from "../../components/data-table";
+import { Sym } from "../../components/equation";
 import { useLocale } from "../../lib/i18n";
 import {
   comparatorWord,
@@ -11,6 +12,13 @@ import {
   protectionFacts,
   quantityWord,
 } from "./rule-words";
+
+/** The standard's letter for a quantity, where it has one. */
+function QuantitySymbol({ quantity }: { quantity: Criterion["quantity"] }) {
+  if (quantity === "lex-8h") return <Sym sub="EX,8h">L</Sym>;
+  if (quantity === "slow-maximum") return <Sym sub="AS,max">L</Sym>;
+  return null;
+}
 
 /** A rule set as a ruled table: what is judged, against what, what follows, and where it is written. */
 export function RuleSetTable({ ruleSet }: { ruleSet: RuleSetVersion }) {
@@ -50,10 +58,13 @@ export function RuleSetTable({ ruleSet }: { ruleSet: RuleSetVersion }) {
               head: i18n.t("Over when"),
               cell: (criterion) => (
                 <span className="two-lines">
-                  {quantityWord(i18n, criterion.quantity)}
+                  <span>
+                    {quantityWord(i18n, criterion.quantity)}{" "}
+                    <QuantitySymbol quantity={criterion.quantity} />
+                  </span>
                   <span>
                     {comparatorWord(i18n, criterion.comparator)}{" "}
-                    <b>{criterionValue(i18n, criterion, locale)}</b>
+                    <b className="whitespace-nowrap">{criterionValue(i18n, criterion, locale)}</b>
                   </span>
                 </span>
               ),

@@ -12,7 +12,7 @@ type Protection = RuleSetVersion["protection"];
 export function quantityWord(i18n: I18n, quantity: Criterion["quantity"]): string {
   switch (quantity) {
     case "lex-8h":
-      return i18n.t("Daily level, LEX,8h");
+      return i18n.t("Daily level");
     case "lex-weekly":
       return i18n.t("Weekly level");
     case "dose":
@@ -20,7 +20,7 @@ export function quantityWord(i18n: I18n, quantity: Criterion["quantity"]): strin
     case "table-dose":
       return i18n.t("Dose by the rule’s table");
     case "slow-maximum":
-      return i18n.t("Slow maximum, LASmax");
+      return i18n.t("Slow maximum");
     case "peak":
       return i18n.t("Peak");
   }

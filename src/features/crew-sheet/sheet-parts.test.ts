@@ -1,0 +1,126 @@
+import { describe, expect, test } from "vitest";
+import type { CrewSheetRow } from "../../../shared/schemas/crew";
+import { testI18n } from "../../lib/test-i18n";
+import {
+  expectedTitle,
+  isForToday,
+  lastTitle,
+  sheetVerdict,
+  splitExpected,
+  splitLast,
+} from "./sheet-parts";
+
+type Figures = NonNullable<CrewSheetRow["figures"]>;
+type Order = NonNullable<CrewSheetRow["order"]>;
+
+const figures = (facts: Partial<Figures> = {}): Figures => ({
+  resultId: "00000000-0000-4000-8000-000000000001",
+  date: "2026-11-30",
+  origin: "computed",
+  outsideDb: 102,
+  outsideBound: "exact",
+  atEarDb: 77,
+  atEarActiveDb: null,
+  atEarAsWorkedDb: null,
+  uncertaintyDb: 2.2,
+  whileWornDb: 78,
+  verdictOutside: "over",
+  verdictAtEar: "under",
+  word: "good",
+  decidingTaskName: "Grinding",
+  hasProtector: "yes",
+  reason: null,
+  ruleSetKey: "uk-2005",
+  ruleSetVersion: 1,
+  governingCriteria: [],
+  ...facts,
+});
+const order = (facts: Partial<Order> = {}): Order => ({
+  findingId: "00000000-0000-4000-8000-000000000002",
+  kind: "protects-too-little",
+  state: "new",
+  facts: {},
+  revision: 1,
+  canMarkDone: true,
+  ...facts,
+});
+const row = (name: string, facts: Partial<CrewSheetRow> = {}): CrewSheetRow => ({
+  worker: { id: name, name, employeeNumber: name },
+  isAbsent: false,
+  isLoan: false,
+  figures: figures(),
+  order: null,
+  ...facts,
+});
+const names = (rows: readonly CrewSheetRow[]) => rows.map(({ worker }) => worker.name);
+const i18n = testI18n();
+
+describe("expected today", () => {
+  const rows = [
+    row("Tavernor", { order: order() }),
+    row("Nwosu"),
+    row("Szabó", { order: order({ state: "done", canMarkDone: false }) }),
+    row("Grzelak", { isAbsent: true, order: order() }),
+    row("Lindqvist", { figures: null }),
+  ];
+  const part = splitExpected(rows);
+
+  test("whoever is absent needs no order today; whoever has no nominal day is named apart", () => {
+    expect(names(part.flagged)).toEqual(["Tavernor", "Szabó"]);
+    expect(names(part.quiet)).toEqual(["Nwosu"]);
+    expect(names(part.open)).toEqual(["Lindqvist"]);
+    expect(names(part.absent)).toEqual(["Grzelak"]);
+  });
+
+  test("an order that is done stays on the sheet and is not counted", () => {
+    expect(expectedTitle(i18n, part, false)).toBe("One order before they start");
+    expect(expectedTitle(i18n, part, true)).toBe("One order for today");
+    expect(expectedTitle(i18n, splitExpected([row("Nwosu")]), false)).toBe(
+      "Nothing to do before they start",
+    );
+  });
+});
+
+describe("last shift", () => {
+  const rows = [
+    row("Nwosu"),
+    row("Dąbrowik", {
+      figures: figures({ verdictAtEar: "cant-tell-yet" }),
+      order: order({ kind: "not-worn-long-enough" }),
+    }),
+    row("Tavernor", { figures: figures({ verdictAtEar: "over" }), order: order() }),
+    row("Wetherell", { figures: figures({ verdictAtEar: "not-assessed", word: null }) }),
+    row("Achterberg", { isAbsent: true, figures: null }),
+  ];
+
+  test("over first, then what we can’t tell; not assessed is not under", () => {
+    const part = splitLast(rows, true);
+    expect(names(part.flagged)).toEqual(["Tavernor", "Dąbrowik"]);
+    expect(names(part.quiet)).toEqual(["Nwosu"]);
+    expect(names(part.open)).toEqual(["Wetherell"]);
+    expect(names(part.absent)).toEqual(["Achterberg"]);
+  });
+
+  test("the title counts both", () => {
+    expect(lastTitle(i18n, rows, true)).toBe("One was over, one we can’t tell yet");
+    expect(lastTitle(i18n, [row("Nwosu")], true)).toBe("Nobody was over");
+    expect(lastTitle(i18n, [row("Achterberg", { figures: null })], true)).toBe(
+      "No shift recorded yet",
+    );
+  });
+
+  test("a swap stands on today’s sheet; asking why it came off belongs to the last shift", () => {
+    const today = [row("Tavernor"), row("Dąbrowik")];
+    const [, asked, swap] = rows;
+    expect(swap && isForToday(swap, today)).toBe(true);
+    expect(asked && isForToday(asked, today)).toBe(false);
+    expect(swap && isForToday(swap, [row("Tavernor", { isAbsent: true })])).toBe(false);
+  });
+
+  test("where the rule has no limit at the ear, too little protection stands for over", () => {
+    const day = figures({ verdictAtEar: "not-assessed" });
+    expect(sheetVerdict({ ...day, word: "too-little" }, false)).toBe("over");
+    expect(sheetVerdict({ ...day, word: "enough" }, false)).toBe("under");
+    expect(sheetVerdict({ ...day, word: null }, false)).toBe("not-assessed");
+  });
+});

@@ -1,0 +1,240 @@
+import { QueryClient, QueryClientProvider } from "@tanstack/react-query";
+import { render, screen, waitFor, within } from "@testing-library/react";
+import userEvent from "@testing-library/user-event";
+import { useState } from "react";
+import { MemoryRouter } from "react-router-dom";
+import { beforeEach, describe, expect, test, vi } from "vitest";
+import { type DayGridView, type DayRowInput, DaySaveView } from "../../../shared/schemas/shift";
+import { TestLanguage } from "../../lib/test-i18n";
+import { DayEntry } from "./day-entry";
+import { createDraftStore } from "./draft-store";
+import { gridRow, savedShift, TASK, testDay, workerId } from "./test-day";
+
+const store = createDraftStore(window.localStorage, "user", "crew", "2026-11-30");
+
+function Page({ first }: { first: DayGridView }) {
+  const [view, setView] = useState(first);
+  return <DayEntry view={view} store={store} way={null} onView={setView} />;
+}
+
+function open(view: DayGridView) {
+  const client = new QueryClient({ defaultOptions: { mutations: { networkMode: "always" } } });
+  const user = userEvent.setup();
+  const page = render(
+    <TestLanguage>
+      <QueryClientProvider client={client}>
+        <MemoryRouter>
+          <Page first={view} />
+        </MemoryRouter>
+      </QueryClientProvider>
+    </TestLanguage>,
+  );
+  return { user, ...page };
+}
+
+const row = (number: number) => screen.getByRole("row", { name: new RegExp(`Worker ${number}\\b`) });
+const cells = (number: number) => within(row(number)).getAllByRole("gridcell");
+/** Start, Length, Rigging, Run-up, Teardown, Control room, Not accounted for, Sum … */
+const RUN_UP = 3;
+const SUM = 7;
+const runUp = (number: number) => cells(number)[RUN_UP] as HTMLElement;
+
+/** Answers a saving as the server would, and keeps what was sent. */
+function answerSaving(answer: (rows: DayRowInput[]) => object) {
+  const sent: { rows: DayRowInput[]; key: string | null }[] = [];
+  vi.mocked(fetch).mockImplementation(async (_, init) => {
+    const { rows } = JSON.parse(String(init?.body)) as { rows: DayRowInput[] };
+    sent.push({ rows, key: new Headers(init?.headers).get("idempotency-key") });
+    const entryId = "00000000-0000-4000-8000-000000009999";
+    const notices = { entryId, notBefore: null, state: "none", people: 0, notices: [] };
+    const reply = DaySaveView.parse({
+      entryId,
+      saved: [],
+      refused: [],
+      conflicts: [],
+      notices,
+      ...answer(rows),
+    });
+    return new Response(JSON.stringify(reply), { status: 201 });
+  });
+  return sent;
+}
+
+const saveAll = (rows: DayRowInput[]) => ({
+  saved: rows.map((one, index) => ({
+    index,
+    workerId: one.workerId,
+    shift: one.kind === "worked" ? { ...savedShift(index + 1), tasks: one.tasks } : null,
+    figures: null,
+    readings: [],
+  })),
+});
+
+beforeEach(() => window.localStorage.clear());
+
+describe("with the keyboard alone", () => {
+  test("a departure is typed, Enter goes down, Tab right, and the day is worked out while typing", async () => {
+    const { user } = open(testDay(3));
+    runUp(1).focus();
+    expect(runUp(1)).toHaveTextContent("120 filled in");
+    await user.keyboard("60");
+    expect(cells(1)[SUM]).toHaveTextContent("420");
+    await user.keyboard("{Enter}");
+    expect(runUp(1)).toHaveTextContent(/^60$/);
+    expect(runUp(2)).toHaveFocus();
+    await user.keyboard("{Tab}");
+    expect(cells(2)[RUN_UP + 1]).toHaveFocus();
+    await user.keyboard("{Shift>}{Tab}{/Shift}");
+    expect(runUp(2)).toHaveFocus();
+  });
+
+  test("Escape gives back what was there, F2 edits it", async () => {
+    const { user } = open(testDay(2));
+    runUp(1).focus();
+    await user.keyboard("99{Escape}");
+    expect(runUp(1)).toHaveTextContent("120 filled in");
+    await user.keyboard("{F2}");
+    expect(screen.getByRole("textbox", { name: "Run-up, Worker 1" })).toHaveValue("120");
+  });
+
+  test("Ctrl+D fills down, Ctrl+Z takes it back", async () => {
+    const { user } = open(testDay(3));
+    runUp(1).focus();
+    await user.keyboard("75{Enter}{Control>}d{/Control}");
+    expect(runUp(2)).toHaveTextContent(/^75$/);
+    await user.keyboard("{Control>}z{/Control}");
+    expect(runUp(2)).toHaveTextContent("120 filled in");
+  });
+
+  test("a marks absent and takes it back", async () => {
+    const { user } = open(testDay(2));
+    runUp(1).focus();
+    await user.keyboard("a");
+    expect(row(1)).toHaveTextContent("all day, no exposure recorded");
+    await user.keyboard("a");
+    expect(runUp(1)).toHaveTextContent("120");
+  });
+
+  test("F8 goes to what is wrong, which says how to mend it", async () => {
+    const { user } = open(testDay(3));
+    runUp(2).focus();
+    await user.keyboard("300{Enter}");
+    expect(screen.getByText("660 min in a 480 min shift.")).toBeVisible();
+    expect(row(2)).toHaveTextContent("Not assessed");
+    await user.keyboard("{F8}");
+    expect(runUp(2)).toHaveFocus();
+    await user.click(screen.getByRole("button", { name: "Make the shift 660 min" }));
+    expect(screen.queryByText("660 min in a 480 min shift.")).toBeNull();
+  });
+
+  test("Escape and Tab leave the grid", async () => {
+    const { user } = open(testDay(2));
+    runUp(1).focus();
+    await user.keyboard("{Escape}{Tab}");
+    expect(screen.getByRole("grid")).not.toContainElement(document.activeElement as HTMLElement);
+  });
+});
+
+describe("saving", () => {
+  test("sends what is typed or confirmed in one request, the rest waits and has the focus", async () => {
+    const sent = answerSaving(saveAll);
+    const { user } = open(testDay(4));
+    runUp(1).focus();
+    await user.keyboard("60{Enter}{Shift>}{Enter}{/Shift}{Control>}{Enter}{/Control}");
+    await waitFor(() => expect(screen.getByText("2 saved, 2 wait.")).toBeVisible());
+    expect(sent).toHaveLength(1);
+    expect(sent[0]?.rows.map((one) => one.workerId)).toEqual([workerId(1), workerId(2)]);
+    expect(row(3)).toContainElement(document.activeElement as HTMLElement);
+    expect(row(1)).toHaveTextContent("saved");
+  });
+
+  test("is sent again under the same key when the connection was lost, and what is typed survives a reload", async () => {
+    vi.mocked(fetch).mockRejectedValue(new TypeError("no connection"));
+    const view = testDay(2);
+    const { user, unmount } = open(view);
+    runUp(1).focus();
+    await user.keyboard("60{Control>}{Enter}{/Control}");
+    await waitFor(() => expect(screen.getByText("Not saved.")).toBeVisible());
+    const first = new Headers(vi.mocked(fetch).mock.calls[0]?.[1]?.headers).get("idempotency-key");
+    unmount();
+
+    const sent = answerSaving(saveAll);
+    const again = open(view);
+    expect(runUp(1)).toHaveTextContent(/^60$/);
+    await again.user.click(screen.getByRole("button", { name: "Save" }));
+    await waitFor(() => expect(screen.getByText("1 saved, 1 waits.")).toBeVisible());
+    expect(sent[0]?.key).toBe(first);
+    again.unmount();
+    expect(window.localStorage).toHaveLength(0);
+  });
+
+  test("asks once why saved shifts change", async () => {
+    const sent = answerSaving(saveAll);
+    const { user } = open(
+      testDay([gridRow(1, { saved: savedShift(1) }), gridRow(2, { saved: savedShift(2) })]),
+    );
+    runUp(1).focus();
+    await user.keyboard("100{Enter}110{Control>}{Enter}{/Control}");
+    const dialog = await screen.findByRole("dialog", { name: "Why do 2 saved shifts change?" });
+    await user.type(within(dialog).getByRole("textbox", { name: "Reason" }), "typed wrongly");
+    await user.click(within(dialog).getByRole("button", { name: "Save with this reason" }));
+    await waitFor(() => expect(sent).toHaveLength(1));
+    expect(sent[0]?.rows).toMatchObject([
+      { revision: 1, reason: "typed wrongly" },
+      { revision: 1, reason: "typed wrongly" },
+    ]);
+  });
+
+  test("that met somebody else's lets choose field by field", async () => {
+    const theirs = savedShift(1, 2);
+    const current = {
+      ...theirs,
+      tasks: theirs.tasks.map((task) =>
+        task.taskId === TASK.control ? { ...task, durationMin: 340 } : task,
+      ),
+    };
+    answerSaving(() => ({ conflicts: [{ index: 0, workerId: workerId(1), current }] }));
+    const { user } = open(testDay([gridRow(1, { saved: savedShift(1) })]));
+    runUp(1).focus();
+    await user.keyboard("100{Control>}{Enter}{/Control}");
+    await user.type(await screen.findByRole("textbox", { name: "Reason" }), "typed wrongly");
+    await user.click(screen.getByRole("button", { name: "Save with this reason" }));
+    const dialog = await screen.findByRole("dialog", {
+      name: "Someone saved this shift before you",
+    });
+    await user.click(within(dialog).getByRole("radio", { name: "Run-up: yours, 100" }));
+    const sent = answerSaving(saveAll);
+    await user.click(within(dialog).getByRole("button", { name: "Save as chosen, revision 3" }));
+    await user.type(await screen.findByRole("textbox", { name: "Reason" }), "both were there");
+    await user.click(screen.getByRole("button", { name: "Save with this reason" }));
+    await waitFor(() => expect(sent).toHaveLength(1));
+    expect(sent[0]?.rows[0]).toMatchObject({
+      revision: 2,
+      tasks: [
+        { taskId: TASK.runUp, durationMin: 100 },
+        { taskId: TASK.control, durationMin: 340 },
+      ],
+    });
+  });
+});
+
+test("the rows that are only filled in are confirmed after a look", async () => {
+  const { user } = open(testDay(3));
+  runUp(1).focus();
+  await user.keyboard("60{Enter}");
+  await user.click(screen.getByRole("button", { name: "Confirm the other 2 as filled in" }));
+  const dialog = screen.getByRole("dialog");
+  expect(within(dialog).getByRole("row", { name: /Worker 2/ })).toBeVisible();
+  await user.click(within(dialog).getByRole("button", { name: "They worked as filled in" }));
+  expect(screen.getByText(/3 rows are ready to be saved/)).toBeVisible();
+});
+
+test("a pasted block says what was left out", async () => {
+  const { user } = open(testDay(2));
+  runUp(1).focus();
+  await user.paste("10\t20\n30\t40\n50\t60");
+  expect(runUp(2)).toHaveTextContent(/^30$/);
+  expect(
+    screen.getByText("Pasted 2 × 2. 1 row did not fit and was left out."),
+  ).toBeVisible();
+});

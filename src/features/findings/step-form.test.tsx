@@ -1,0 +1,81 @@
+// @vitest-environment jsdom
+import { QueryClient, QueryClientProvider } from "@tanstack/react-query";
+import { cleanup, render, screen, waitFor } from "@testing-library/react";
+import userEvent from "@testing-library/user-event";
+import { afterEach, expect, test, vi } from "vitest";
+import { FindingView } from "../../../shared/schemas/finding";
+import { TestLanguage } from "../../lib/test-i18n";
+import { StepForm, stepsFor } from "./step-form";
+
+afterEach(() => {
+  cleanup();
+  vi.unstubAllGlobals();
+});
+
+const id = "00000000-0000-4000-8000-000000000001";
+const view = (overrides: Partial<FindingView> = {}): FindingView =>
+  FindingView.parse({
+    id, kind: "protects-too-little", state: "new", criterion: "", useKey: "", facts: {}, firstDate: "2026-11-30", lastDate: "2026-11-30", daysCount: 1,
+    dueOn: "2026-12-01", siteId: id, worker: null, subjectName: null, crewName: null, figures: null, ownerName: null, revision: 1,
+    can: { handle: true, markDone: true, comment: true }, closingReason: null, closedOn: null, previousId: null, steps: [], evidence: [], told: [],
+    ...overrides,
+  });
+
+const reply = (status: number, body: unknown) => new Response(JSON.stringify(body), { status, headers: { "content-type": "application/json" } });
+
+function show(finding: FindingView) {
+  render(
+    <TestLanguage>
+      <QueryClientProvider client={new QueryClient({ defaultOptions: { mutations: { networkMode: "always" } } })}>
+        <StepForm finding={finding} />
+      </QueryClientProvider>
+    </TestLanguage>,
+  );
+}
+
+test("the steps are those of the state and of what the reader may do", () => {
+  expect(stepsFor(view())).toEqual(["take-in-hand", "mark-done", "cannot", "close", "comment"]);
+  expect(stepsFor(view({ state: "done" }))).toEqual(["reopen", "close", "comment"]);
+  expect(stepsFor(view({ state: "closed" }))).toEqual(["comment"]);
+  expect(stepsFor(view({ can: { handle: false, markDone: true, comment: true } }))).toEqual(["mark-done", "cannot", "comment"]);
+  expect(stepsFor(view({ can: { handle: false, markDone: false, comment: false } }))).toEqual([]);
+});
+
+test("closing needs a reason", async () => {
+  const fetched = vi.fn();
+  vi.stubGlobal("fetch", fetched);
+  show(view());
+  const user = userEvent.setup();
+  await user.click(screen.getByRole("button", { name: "Close" }));
+  await user.click(screen.getAllByRole("button", { name: "Close" })[1]!);
+  expect(await screen.findByText("At least 3 characters.")).toBeDefined();
+  expect(fetched).not.toHaveBeenCalled();
+});
+
+test("a stale step shows both versions; it goes again over the revision that stands", async () => {
+  HTMLDialogElement.prototype.showModal = function showModal(this: HTMLDialogElement) {
+    this.open = true;
+  };
+  HTMLDialogElement.prototype.close = function close(this: HTMLDialogElement) {
+    this.open = false;
+  };
+  const current = view({ revision: 2, state: "in-hand", steps: [{ id, kind: "state", fromState: "new", toState: "in-hand", text: null, authorName: "Y. Halloran", at: "2026-12-01T13:39:00Z" }] });
+  const fetched = vi
+    .fn()
+    .mockResolvedValueOnce(reply(412, { code: "stale", status: 412, title: "stale", params: {}, issues: [], current }))
+    .mockResolvedValueOnce(reply(201, view({ revision: 3, state: "done" })));
+  vi.stubGlobal("fetch", fetched);
+  show(view());
+  const user = userEvent.setup();
+  await user.click(screen.getByRole("button", { name: "Mark done" }));
+  await user.type(screen.getByRole("textbox", { name: /What was done/ }), "has Fenmuff low");
+  await user.click(screen.getAllByRole("button", { name: "Mark done" })[1]!);
+  expect(await screen.findByText("Someone saved this finding before you")).toBeDefined();
+  expect(screen.getByText("Y. Halloran")).toBeDefined();
+  await user.click(screen.getByRole("button", { name: "Mark done all the same" }));
+  await waitFor(() => expect(fetched).toHaveBeenCalledTimes(2));
+  const [, second] = fetched.mock.calls[1] as [string, RequestInit];
+  expect(new Headers(second.headers).get("if-match")).toBe("2");
+  expect(JSON.parse(String(second.body))).toEqual({ kind: "mark-done", text: "has Fenmuff low" });
+  expect(await screen.findByText("saved")).toBeDefined();
+});
