@@ -13,10 +13,11 @@ export interface Organization {
   years: number;
 }
 
-/** The organizations with scale data, the one with the longest history first. */
+/** The organizations with scale data in the order of their making: the one with the longest history first. */
 export async function organizations(db: pg.Client): Promise<Organization[]> {
   const { rows } = await db.query<Organization>(
-    `SELECT organization_id AS id, (max(date) - min(date)) / 365.25::float8 AS years FROM days GROUP BY 1 ORDER BY 2 DESC`,
+    `SELECT d.organization_id AS id, ((max(d.date) - min(d.date)) / 365.25)::float8 AS years
+     FROM days d JOIN organizations o ON o.id = d.organization_id GROUP BY d.organization_id, o.created_at ORDER BY o.created_at`,
   );
   return rows;
 }

@@ -226,7 +226,7 @@ async function storePastResults(
     `INSERT INTO days (organization_id, worker_id, date, site_id, crew_id, current_result_id, is_stale)
      SELECT $1, x."workerId", x.date, $2, x."crewId", r.id, FALSE FROM jsonb_to_recordset($3::jsonb) ${columns}
      JOIN day_results r ON r.worker_id = x."workerId" AND r.date = x.date AND r.inputs_hash = decode(x.hash, 'hex')
-     ON CONFLICT (worker_id, date) DO UPDATE SET current_result_id = excluded.current_result_id, is_stale = FALSE`,
+     ON CONFLICT (worker_id, date) DO UPDATE SET current_result_id = excluded.current_result_id, site_id = excluded.site_id, is_stale = FALSE`,
     [organizationId, siteId, json],
   );
 }

@@ -255,11 +255,7 @@ export function DataTable<Row extends RowData>({
                             <table.FlexRender cell={cell} />
                           </th>
                         ) : (
-                          <td
-                            key={cell.id}
-                            data-column={column.id}
-                            className={cellClass(column)}
-                          >
+                          <td key={cell.id} data-column={column.id} className={cellClass(column)}>
                             <table.FlexRender cell={cell} />
                           </td>
                         );

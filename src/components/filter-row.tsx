@@ -26,7 +26,12 @@ export function FilterSelect({
   return (
     <span className="filter">
       <label htmlFor={id}>{label}</label>
-      <select id={id} className="input" value={value} onChange={(event) => onChange(event.target.value)}>
+      <select
+        id={id}
+        className="input"
+        value={value}
+        onChange={(event) => onChange(event.target.value)}
+      >
         {choices.map((choice) => (
           <option key={choice.value} value={choice.value}>
             {choice.label}
@@ -37,20 +42,47 @@ export function FilterSelect({
   );
 }
 
-export function FilterText({ label, value, onChange }: { label: string; value: string; onChange: (value: string) => void }) {
+export function FilterText({
+  label,
+  value,
+  onChange,
+}: {
+  label: string;
+  value: string;
+  onChange: (value: string) => void;
+}) {
   const id = useId();
   return (
     <span className="filter">
       <label htmlFor={id}>{label}</label>
-      <input id={id} type="search" className="input" autoComplete="off" value={value} onChange={(event) => onChange(event.target.value)} />
+      <input
+        id={id}
+        type="search"
+        className="input"
+        autoComplete="off"
+        value={value}
+        onChange={(event) => onChange(event.target.value)}
+      />
     </span>
   );
 }
 
-export function FilterCheck({ label, isChecked, onChange }: { label: string; isChecked: boolean; onChange: (isChecked: boolean) => void }) {
+export function FilterCheck({
+  label,
+  isChecked,
+  onChange,
+}: {
+  label: string;
+  isChecked: boolean;
+  onChange: (isChecked: boolean) => void;
+}) {
   return (
     <label className="choice filter-check">
-      <input type="checkbox" checked={isChecked} onChange={(event) => onChange(event.target.checked)} />
+      <input
+        type="checkbox"
+        checked={isChecked}
+        onChange={(event) => onChange(event.target.checked)}
+      />
       <span>{label}</span>
     </label>
   );

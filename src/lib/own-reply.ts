@@ -7,7 +7,8 @@ import type { ReplySchema } from "./api";
 export function ownReply<T extends object>(...members: (keyof T & string)[]): ReplySchema<T> {
   return {
     parse(value: unknown): T {
-      if (typeof value === "object" && value !== null && members.every((name) => name in value)) return value as T;
+      if (typeof value === "object" && value !== null && members.every((name) => name in value))
+        return value as T;
       throw new Error(`the reply lacks ${members.join(", ")}`);
     },
   };

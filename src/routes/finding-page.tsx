@@ -2,15 +2,27 @@ import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { useState } from "react";
 import { useParams } from "react-router-dom";
-import { noticedSentence, orderSentence, remedyFigure, remedyOf } from "../../shared/findings/sentences";
+import {
+  noticedSentence,
+  orderSentence,
+  remedyFigure,
+  remedyOf,
+} from "../../shared/findings/sentences";
 import { findingStateWord, findingWord } from "../../shared/findings/words";
 import { formatDate, formatInstant, formatShortDate } from "../../shared/format/date";
 import { formatLevel, formatLimit } from "../../shared/format/level";
 import { ruleSetVersion } from "../../shared/rule-sets";
 import type { DayFigures, FindingView } from "../../shared/schemas/finding";
 import { Button, ButtonLink } from "../components/button";
-import { AtEarFigure, DayStrip, OutsideFigure, TableStripGround, TableStripScale, useTableFrame } from "../components/day-figures";
 import { type DataColumn, DataTable } from "../components/data-table";
+import {
+  AtEarFigure,
+  DayStrip,
+  OutsideFigure,
+  TableStripGround,
+  TableStripScale,
+  useTableFrame,
+} from "../components/day-figures";
 import { Empty } from "../components/empty";
 import { Failed } from "../components/failed";
 import { TextButton, TextLink } from "../components/link";
@@ -63,18 +75,32 @@ function Finding({ finding }: { finding: FindingView }) {
           way={
             <>
               <TextLink to={paths.findings}>{i18n.t("Findings")}</TextLink> /{" "}
-              {worker ? <TextLink to={paths.worker(worker.id)}>{`${worker.name}, ${worker.employeeNumber}`}</TextLink> : who}
+              {worker ? (
+                <TextLink
+                  to={paths.worker(worker.id)}
+                >{`${worker.name}, ${worker.employeeNumber}`}</TextLink>
+              ) : (
+                who
+              )}
             </>
           }
-          title={who ? i18n.t("{what}: {who}", { what: findingWord(i18n, kind), who }) : findingWord(i18n, kind)}
+          title={
+            who
+              ? i18n.t("{what}: {who}", { what: findingWord(i18n, kind), who })
+              : findingWord(i18n, kind)
+          }
           lead={
             <>
-              <b>{findingStateWord(i18n, finding.state)}.</b> {noticedSentence(i18n, locale, kind, facts)}.
+              <b>{findingStateWord(i18n, finding.state)}.</b>{" "}
+              {noticedSentence(i18n, locale, kind, facts)}.
             </>
           }
           actions={
             remedy && worker && finding.can.handle && finding.state !== "closed" ? (
-              <ButtonLink kind="primary" to={`${paths.worker(worker.id)}?assign=${remedy.modelIds.join(",")}#protectors`}>
+              <ButtonLink
+                kind="primary"
+                to={`${paths.worker(worker.id)}?assign=${remedy.modelIds.join(",")}#protectors`}
+              >
                 {i18n.t("Assign it")}
               </ButtonLink>
             ) : undefined
@@ -82,7 +108,8 @@ function Finding({ finding }: { finding: FindingView }) {
         />
         {finding.state !== "closed" && (
           <p className="finding-order">
-            <b>{order}.</b> {figure && i18n.t("Worn throughout that would be {figure}.", { figure })}
+            <b>{order}.</b>{" "}
+            {figure && i18n.t("Worn throughout that would be {figure}.", { figure })}
           </p>
         )}
         <Evidence finding={finding} />
@@ -91,7 +118,13 @@ function Finding({ finding }: { finding: FindingView }) {
           <StepForm finding={finding} />
         </Section>
       </PageBody>
-      <Folio>{ruleSet && i18n.t("{title}, rule set version {version}.", { title: i18n._(ruleSet.title), version: ruleSet.version })}</Folio>
+      <Folio>
+        {ruleSet &&
+          i18n.t("{title}, rule set version {version}.", {
+            title: i18n._(ruleSet.title),
+            version: ruleSet.version,
+          })}
+      </Folio>
     </>
   );
 }
@@ -122,12 +155,37 @@ function Evidence({ finding }: { finding: FindingView }) {
       id: "wrong",
       head: i18n.t("Day"),
       isRowHead: true,
-      cell: (day) => <TextLink to={worker ? paths.result(worker.id, day.date) : paths.storedResult(day.resultId)}>{formatShortDate(day.date, locale)}</TextLink>,
+      cell: (day) => (
+        <TextLink
+          to={worker ? paths.result(worker.id, day.date) : paths.storedResult(day.resultId)}
+        >
+          {formatShortDate(day.date, locale)}
+        </TextLink>
+      ),
       sortValue: ({ date }) => date,
     },
-    { id: "at-ear", head: i18n.t("At the ear"), unit: i18n.t("day, dB"), cell: (day) => <AtEarFigure figures={day} />, sortValue: ({ atEarDb }) => atEarDb },
-    { id: "strip", kind: "strip", head: <TableStripScale frame={frame} />, widthPx: 216, filler: <TableStripGround frame={frame} />, cell: (day) => <DayStrip figures={day} isHidden /> },
-    { id: "outside", head: i18n.t("Without protection"), unit: i18n.t("day, dB"), cell: (day) => <OutsideFigure figures={day} />, sortValue: ({ outsideDb }) => outsideDb },
+    {
+      id: "at-ear",
+      head: i18n.t("At the ear"),
+      unit: i18n.t("day, dB"),
+      cell: (day) => <AtEarFigure figures={day} />,
+      sortValue: ({ atEarDb }) => atEarDb,
+    },
+    {
+      id: "strip",
+      kind: "strip",
+      head: <TableStripScale frame={frame} />,
+      widthPx: 216,
+      filler: <TableStripGround frame={frame} />,
+      cell: (day) => <DayStrip figures={day} isHidden />,
+    },
+    {
+      id: "outside",
+      head: i18n.t("Without protection"),
+      unit: i18n.t("day, dB"),
+      cell: (day) => <OutsideFigure figures={day} />,
+      sortValue: ({ outsideDb }) => outsideDb,
+    },
     {
       id: "todo",
       head: i18n.t("Protector, while worn"),
@@ -137,7 +195,13 @@ function Evidence({ finding }: { finding: FindingView }) {
         ) : (
           <ProtectorWord
             word={day.word}
-            beneath={day.whileWornDb === null ? undefined : [day.decidingTaskName, formatLevel(day.whileWornDb, locale)].filter(Boolean).join(" ")}
+            beneath={
+              day.whileWornDb === null
+                ? undefined
+                : [day.decidingTaskName, formatLevel(day.whileWornDb, locale)]
+                    .filter(Boolean)
+                    .join(" ")
+            }
           />
         ),
     },
@@ -152,7 +216,9 @@ function Evidence({ finding }: { finding: FindingView }) {
         isTwoLine
         empty={
           <Empty title={i18n.t("No day stands behind this finding.")}>
-            {finding.kind === "problem-reported" ? i18n.t("The worker reported it.") : i18n.t("The days that showed it were corrected.")}
+            {finding.kind === "problem-reported"
+              ? i18n.t("The worker reported it.")
+              : i18n.t("The days that showed it were corrected.")}
           </Empty>
         }
       />
@@ -160,7 +226,10 @@ function Evidence({ finding }: { finding: FindingView }) {
   );
 }
 
-function stepWords(i18n: ReturnType<typeof useLingui>["i18n"], step: FindingView["steps"][number]): string {
+function stepWords(
+  i18n: ReturnType<typeof useLingui>["i18n"],
+  step: FindingView["steps"][number],
+): string {
   switch (step.kind) {
     case "comment":
       return i18n.t("Comment");
@@ -192,8 +261,17 @@ function Steps({ finding }: { finding: FindingView }) {
         <li key={step.id}>
           <time dateTime={step.at}>{formatInstant(step.at, timeZone, locale)}</time>
           <span>
-            <b>{stepWords(i18n, step)}</b> <span className="by">{step.authorName ? i18n.t("by {name}", { name: step.authorName }) : step.kind === "state" ? i18n.t("by the program") : ""}</span>
-            {step.text && step.kind !== "evidence-gone" && <span className="said block">{step.text}</span>}
+            <b>{stepWords(i18n, step)}</b>{" "}
+            <span className="by">
+              {step.authorName
+                ? i18n.t("by {name}", { name: step.authorName })
+                : step.kind === "state"
+                  ? i18n.t("by the program")
+                  : ""}
+            </span>
+            {step.text && step.kind !== "evidence-gone" && (
+              <span className="said block">{step.text}</span>
+            )}
           </span>
         </li>
       ))}
@@ -237,20 +315,30 @@ function Margin({ finding }: { finding: FindingView }) {
       <MarginNote title={i18n.t("Since when, until when")}>
         <p>
           {finding.daysCount > 1
-            ? i18n.t("{count, plural, other {# days, {first} to {last}.}}", { count: finding.daysCount, first: formatDate(finding.firstDate, locale), last: formatDate(finding.lastDate, locale) })
+            ? i18n.t("{count, plural, other {# days, {first} to {last}.}}", {
+                count: finding.daysCount,
+                first: formatDate(finding.firstDate, locale),
+                last: formatDate(finding.lastDate, locale),
+              })
             : i18n.t("{date}.", { date: formatDate(finding.lastDate, locale) })}
         </p>
-        {finding.dueOn && finding.state !== "closed" && <p>{i18n.t("Due {date}.", { date: formatDate(finding.dueOn, locale) })}</p>}
+        {finding.dueOn && finding.state !== "closed" && (
+          <p>{i18n.t("Due {date}.", { date: formatDate(finding.dueOn, locale) })}</p>
+        )}
         {finding.ownerName && <p>{i18n.t("In hand with {name}.", { name: finding.ownerName })}</p>}
         {finding.closedOn && (
           <p>
             {i18n.t("Closed {date}", { date: formatDate(finding.closedOn, locale) })}
-            {finding.closingReason && finding.closingReason !== "evidence-gone" ? `: ${finding.closingReason}` : "."}
+            {finding.closingReason && finding.closingReason !== "evidence-gone"
+              ? `: ${finding.closingReason}`
+              : "."}
           </p>
         )}
         {finding.previousId && (
           <p>
-            <TextLink to={paths.finding(finding.previousId)}>{i18n.t("The finding that came back")}</TextLink>
+            <TextLink to={paths.finding(finding.previousId)}>
+              {i18n.t("The finding that came back")}
+            </TextLink>
           </p>
         )}
       </MarginNote>
@@ -259,11 +347,20 @@ function Margin({ finding }: { finding: FindingView }) {
         {finding.told.map((told) => (
           <p key={told.noticeId}>
             <b className="label-ink">{told.name}</b> {toldWord(i18n, told.state)}
-            {told.at && ` ${formatInstant(told.at, timeZone, locale)}`}. <TextButton onClick={() => setLook({ id: told.noticeId, recipientName: told.name })}>{i18n.t("Look")}</TextButton>
+            {told.at && ` ${formatInstant(told.at, timeZone, locale)}`}.{" "}
+            <TextButton onClick={() => setLook({ id: told.noticeId, recipientName: told.name })}>
+              {i18n.t("Look")}
+            </TextButton>
           </p>
         ))}
       </MarginNote>
-      {look && <LookAtNotices notices={[look]} onClose={() => setLook(null)} actions={<Button onClick={() => setLook(null)}>{i18n.t("Close the letter")}</Button>} />}
+      {look && (
+        <LookAtNotices
+          notices={[look]}
+          onClose={() => setLook(null)}
+          actions={<Button onClick={() => setLook(null)}>{i18n.t("Close the letter")}</Button>}
+        />
+      )}
     </>
   );
 }

@@ -41,7 +41,9 @@ export function Component() {
       <PageBody>
         <PageHead
           title={i18n.t("Findings")}
-          lead={i18n.t("What the program noticed and a person must act on. The soonest due are read first; within them the worst stand at the top.")}
+          lead={i18n.t(
+            "What the program noticed and a person must act on. The soonest due are read first; within them the worst stand at the top.",
+          )}
         />
         <FilterRow label={i18n.t("Narrow the findings")}>
           <FilterSelect
@@ -59,14 +61,20 @@ export function Component() {
             label={i18n.t("Kind")}
             value={kind ?? ""}
             onChange={(value) => narrow("kind", value)}
-            choices={[{ value: "", label: i18n.t("Any kind") }, ...FINDING_KINDS.map((one) => ({ value: one, label: findingWord(i18n, one) }))]}
+            choices={[
+              { value: "", label: i18n.t("Any kind") },
+              ...FINDING_KINDS.map((one) => ({ value: one, label: findingWord(i18n, one) })),
+            ]}
           />
           {user.sites.length > 1 && (
             <FilterSelect
               label={i18n.t("Site")}
               value={siteId ?? ""}
               onChange={(value) => narrow("site", value)}
-              choices={[{ value: "", label: i18n.t("All sites") }, ...user.sites.map(({ id, name }) => ({ value: id, label: name }))]}
+              choices={[
+                { value: "", label: i18n.t("All sites") },
+                ...user.sites.map(({ id, name }) => ({ value: id, label: name })),
+              ]}
             />
           )}
         </FilterRow>
@@ -75,10 +83,26 @@ export function Component() {
           state={list.isSuccess ? "ready" : list.isError ? "failed" : "loading"}
           error={list.error}
           onRetry={() => void list.refetch()}
-          more={{ hasMore: list.hasNextPage, isLoading: list.isFetchingNextPage, onMore: () => void list.fetchNextPage() }}
+          more={{
+            hasMore: list.hasNextPage,
+            isLoading: list.isFetchingNextPage,
+            onMore: () => void list.fetchNextPage(),
+          }}
           empty={
-            <Empty title={isNarrowed ? i18n.t("No finding of that kind.") : state === "open" ? i18n.t("No finding is open.") : i18n.t("No such finding.")}>
-              {isNarrowed ? i18n.t("Choose another kind, state or site above.") : i18n.t("Findings come from the days that are entered; each day is judged as it is saved.")}
+            <Empty
+              title={
+                isNarrowed
+                  ? i18n.t("No finding of that kind.")
+                  : state === "open"
+                    ? i18n.t("No finding is open.")
+                    : i18n.t("No such finding.")
+              }
+            >
+              {isNarrowed
+                ? i18n.t("Choose another kind, state or site above.")
+                : i18n.t(
+                    "Findings come from the days that are entered; each day is judged as it is saved.",
+                  )}
             </Empty>
           }
         />

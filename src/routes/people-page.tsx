@@ -1,6 +1,7 @@
 import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { ButtonLink } from "../components/button";
+import { TextLink } from "../components/link";
 import { Folio, PageBody, PageHead } from "../components/page";
 import { PeopleTable } from "../features/people/people-table";
 import { peopleQueries } from "../features/people/queries";
@@ -33,7 +34,9 @@ export function Component() {
           timeZone={sites[0]?.timeZone ?? "UTC"}
         />
       </PageBody>
-      <Folio caution={i18n.t("Granting and ending access are events in the trail.")} />
+      <Folio caution={i18n.t("Granting and ending access are events in the trail.")}>
+        <TextLink to={paths.trail}>{i18n.t("Trail")}</TextLink>
+      </Folio>
     </>
   );
 }

@@ -6,13 +6,19 @@ import { formatDate } from "../../shared/format/date";
 import { formatLevel } from "../../shared/format/level";
 import { ruleSetVersion } from "../../shared/rule-sets";
 import type { ResultView } from "../../shared/schemas/result";
-import { AtEarFigure, DayStrip, OutsideFigure, TableStripScale, useStripFrame } from "../components/day-figures";
+import {
+  AtEarFigure,
+  DayStrip,
+  OutsideFigure,
+  TableStripScale,
+  useStripFrame,
+} from "../components/day-figures";
 import { Failed } from "../components/failed";
 import { TextLink } from "../components/link";
 import { Folio, PageBody, PageHead } from "../components/page";
-import { hasRole, useUser } from "../features/session/session";
 import { dayResultQuery, storedResultQuery } from "../features/results/queries";
 import { ResultFacts } from "../features/results/result-facts";
+import { hasRole, useUser } from "../features/session/session";
 import { useLocale } from "../lib/i18n";
 import { useIsPhone } from "../lib/use-is-phone";
 import { paths } from "../paths";
@@ -20,7 +26,9 @@ import "../styles/findings.css";
 import "../styles/result.css";
 
 // The engine and its words come when there is a result to take apart.
-const WorkingOf = lazy(async () => ({ default: (await import("../features/results/working-of")).WorkingOf }));
+const WorkingOf = lazy(async () => ({
+  default: (await import("../features/results/working-of")).WorkingOf,
+}));
 
 /** How a working is called on paper: the start of its result's id. */
 const workingName = (id: string) => id.slice(0, 8);
@@ -41,9 +49,14 @@ export function Component() {
       ? i18n.t("Day of {date}: how", { date: formatDate(date, locale) })
       : i18n.t("A result: how")
     : figures.atEarDb !== null
-      ? i18n.t("At the ear {atEar}, outside {outside}: how", { atEar: formatLevel(figures.atEarDb, locale), outside: formatLevel(figures.outsideDb, locale, figures.outsideBound) })
+      ? i18n.t("At the ear {atEar}, outside {outside}: how", {
+          atEar: formatLevel(figures.atEarDb, locale),
+          outside: formatLevel(figures.outsideDb, locale, figures.outsideBound),
+        })
       : figures.outsideDb !== null
-        ? i18n.t("Outside {outside}: how", { outside: formatLevel(figures.outsideDb, locale, figures.outsideBound) })
+        ? i18n.t("Outside {outside}: how", {
+            outside: formatLevel(figures.outsideDb, locale, figures.outsideBound),
+          })
         : i18n.t("Not assessed: why");
   return (
     <div className="sheet">
@@ -51,7 +64,8 @@ export function Component() {
         <div>
           <b>Dinward</b>
           <span>
-            {data && `${data.worker.name}, ${data.worker.employeeNumber} · ${formatDate(data.date, locale)}`}
+            {data &&
+              `${data.worker.name}, ${data.worker.employeeNumber} · ${formatDate(data.date, locale)}`}
           </span>
           <span>{data && i18n.t("Working {name}", { name: workingName(data.id) })}</span>
         </div>
@@ -68,7 +82,10 @@ export function Component() {
                 )}
                 {data && (
                   <>
-                    <TextLink to={paths.worker(data.worker.id)}>{`${data.worker.name}, ${data.worker.employeeNumber}`}</TextLink> / {dayWords(i18n, locale, data)}
+                    <TextLink
+                      to={paths.worker(data.worker.id)}
+                    >{`${data.worker.name}, ${data.worker.employeeNumber}`}</TextLink>{" "}
+                    / {dayWords(i18n, locale, data)}
                   </>
                 )}
               </>
@@ -78,7 +95,9 @@ export function Component() {
               data && !data.isCurrent ? (
                 <>
                   {i18n.t("An earlier result of this day.")}{" "}
-                  <TextLink to={paths.result(data.worker.id, data.date)}>{i18n.t("The one that stands now")}</TextLink>
+                  <TextLink to={paths.result(data.worker.id, data.date)}>
+                    {i18n.t("The one that stands now")}
+                  </TextLink>
                 </>
               ) : undefined
             }
@@ -89,7 +108,13 @@ export function Component() {
             <div className="working">
               {data.input && data.evaluation ? (
                 <Suspense fallback={<WorkingFrame />}>
-                  <WorkingOf result={data} input={data.input} evaluation={data.evaluation} workingName={workingName(data.id)} strip={<ResultStrip result={data} />} />
+                  <WorkingOf
+                    result={data}
+                    input={data.input}
+                    evaluation={data.evaluation}
+                    workingName={workingName(data.id)}
+                    strip={<ResultStrip result={data} />}
+                  />
                 </Suspense>
               ) : (
                 <Imported result={data} />
@@ -99,17 +124,37 @@ export function Component() {
         </PageBody>
       </div>
       <div className="sheet-foot">
-        <Folio caution={i18n.t("An aid to screening. Local regulation, a qualified hygienist and a licensed audiologist decide.")}>
-          {data && ruleSet && i18n.t("{title}, rule set version {version}. Method version {method}. Working {name}.", { title: i18n._(ruleSet.title), version: ruleSet.version, method: data.methodVersion, name: workingName(data.id) })}
+        <Folio
+          caution={i18n.t(
+            "An aid to screening. Local regulation, a qualified hygienist and a licensed audiologist decide.",
+          )}
+        >
+          {data &&
+            ruleSet &&
+            i18n.t(
+              "{title}, rule set version {version}. Method version {method}. Working {name}.",
+              {
+                title: i18n._(ruleSet.title),
+                version: ruleSet.version,
+                method: data.methodVersion,
+                name: workingName(data.id),
+              },
+            )}
         </Folio>
       </div>
     </div>
   );
 }
 
-function dayWords(i18n: ReturnType<typeof useLingui>["i18n"], locale: ReturnType<typeof useLocale>, { date, shifts }: ResultView): string {
+function dayWords(
+  i18n: ReturnType<typeof useLingui>["i18n"],
+  locale: ReturnType<typeof useLocale>,
+  { date, shifts }: ResultView,
+): string {
   const day = i18n.t("Day of {date}", { date: formatDate(date, locale) });
-  const spans = shifts.map(({ localStart, lengthMin }) => i18n.t("shift {start} to {end}", { start: localStart, end: endOf(localStart, lengthMin) }));
+  const spans = shifts.map(({ localStart, lengthMin }) =>
+    i18n.t("shift {start} to {end}", { start: localStart, end: endOf(localStart, lengthMin) }),
+  );
   return [day, ...spans].join(", ");
 }
 
@@ -133,12 +178,21 @@ function ResultStrip({ result: { figures } }: { result: ResultView }) {
         {figures.whileWornDb !== null && (
           <span>
             {figures.decidingTaskName
-              ? i18n.t("▲ {level} while worn, {task}", { level: level(figures.whileWornDb), task: figures.decidingTaskName })
+              ? i18n.t("▲ {level} while worn, {task}", {
+                  level: level(figures.whileWornDb),
+                  task: figures.decidingTaskName,
+                })
               : i18n.t("▲ {level} while worn", { level: level(figures.whileWornDb) })}
           </span>
         )}
-        {figures.atEarActiveDb !== null && <span>{i18n.t("○ {level} with the active part on", { level: level(figures.atEarActiveDb) })}</span>}
-        {figures.atEarAsWorkedDb !== null && <span>{i18n.t("● {level} as worked", { level: level(figures.atEarAsWorkedDb) })}</span>}
+        {figures.atEarActiveDb !== null && (
+          <span>
+            {i18n.t("○ {level} with the active part on", { level: level(figures.atEarActiveDb) })}
+          </span>
+        )}
+        {figures.atEarAsWorkedDb !== null && (
+          <span>{i18n.t("● {level} as worked", { level: level(figures.atEarAsWorkedDb) })}</span>
+        )}
       </p>
     </div>
   );
@@ -170,7 +224,9 @@ function Imported({ result }: { result: ResultView }) {
         <ResultStrip result={result} />
         <p>
           <b>{i18n.t("Imported, working not available.")}</b>{" "}
-          {i18n.t("This day came in with its levels only; the tasks and readings behind it are not on record here.")}
+          {i18n.t(
+            "This day came in with its levels only; the tasks and readings behind it are not on record here.",
+          )}
         </p>
       </div>
       <ResultFacts result={result} workingName={workingName(result.id)} />

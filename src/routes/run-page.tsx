@@ -12,7 +12,14 @@ import { Button } from "../components/button";
 import { ConflictDialog, type ConflictField } from "../components/conflict-dialog";
 import { type DataColumn, DataTable } from "../components/data-table";
 import { Failed } from "../components/failed";
-import { Form, FormActions, SubmitButton, showIssuesOn, TextAreaField, useSchemaForm } from "../components/form";
+import {
+  Form,
+  FormActions,
+  SubmitButton,
+  showIssuesOn,
+  TextAreaField,
+  useSchemaForm,
+} from "../components/form";
 import { FormProblem } from "../components/form-problem";
 import { TextLink } from "../components/link";
 import { COMMON_SETTINGS } from "../components/meter-settings";
@@ -56,20 +63,27 @@ export function Component() {
     ) : (
       <PageBody>
         <PageHead title={i18n.t("New run")} />
-        {instruments.error && <Failed error={instruments.error} onRetry={() => void instruments.refetch()} />}
+        {instruments.error && (
+          <Failed error={instruments.error} onRetry={() => void instruments.refetch()} />
+        )}
       </PageBody>
     );
   }
-  if (run.data) return <Run key={run.data.id} run={run.data} instruments={instruments.data?.rows ?? []} />;
+  if (run.data)
+    return <Run key={run.data.id} run={run.data} instruments={instruments.data?.rows ?? []} />;
   return (
     <PageBody>
-      <PageHead title={i18n.t("Run")} lead={run.error ? undefined : <span className="loading-line" />} />
+      <PageHead
+        title={i18n.t("Run")}
+        lead={run.error ? undefined : <span className="loading-line" />}
+      />
       {run.error && <Failed error={run.error} onRetry={() => void run.refetch()} />}
     </PageBody>
   );
 }
 
-const presetsOf = (instrument: InstrumentView | undefined) => (instrument && instrument.presets.length > 0 ? instrument.presets : COMMON_SETTINGS);
+const presetsOf = (instrument: InstrumentView | undefined) =>
+  instrument && instrument.presets.length > 0 ? instrument.presets : COMMON_SETTINGS;
 
 function NewRun({ instruments }: { instruments: readonly InstrumentView[] }) {
   const { i18n } = useLingui();
@@ -99,14 +113,32 @@ function NewRun({ instruments }: { instruments: readonly InstrumentView[] }) {
   // The instrument's own settings rows, as long as nothing is typed into the ones that stand there.
   if (instrument && filledFor !== instrument.id) {
     setFilledFor(instrument.id);
-    const isUntouched = form.getValues("readings").every(({ dosePct, averageDb, lceqDb, lasMaxDb, peakDb }) => [dosePct, averageDb, lceqDb, lasMaxDb, peakDb].every((value) => value === null));
-    if (isUntouched) queueMicrotask(() => form.setValue("readings", presetsOf(instrument).map((settings) => emptyReading(settings as RunFormValues["readings"][number]["settings"]))));
+    const isUntouched = form
+      .getValues("readings")
+      .every(({ dosePct, averageDb, lceqDb, lasMaxDb, peakDb }) =>
+        [dosePct, averageDb, lceqDb, lasMaxDb, peakDb].every((value) => value === null),
+      );
+    if (isUntouched)
+      queueMicrotask(() =>
+        form.setValue(
+          "readings",
+          presetsOf(instrument).map((settings) =>
+            emptyReading(settings as RunFormValues["readings"][number]["settings"]),
+          ),
+        ),
+      );
   }
   const needsKeptReason = isCalibrationOut(instrument, form.watch("date"));
   return (
     <>
       <PageBody>
-        <PageHead way={<TextLink to={paths.runs}>{i18n.t("Runs")}</TextLink>} title={i18n.t("New run")} lead={i18n.t("One instrument, from out to back. Leave a row’s figures empty only if you take the row out.")} />
+        <PageHead
+          way={<TextLink to={paths.runs}>{i18n.t("Runs")}</TextLink>}
+          title={i18n.t("New run")}
+          lead={i18n.t(
+            "One instrument, from out to back. Leave a row’s figures empty only if you take the row out.",
+          )}
+        />
         <Form
           aria-label={i18n.t("New run")}
           onSubmit={form.handleSubmit((values) => {
@@ -124,7 +156,11 @@ function NewRun({ instruments }: { instruments: readonly InstrumentView[] }) {
           })}
         >
           <RunHeadFields form={form} instruments={instruments} />
-          <RunFactsFields form={form} presets={presetsOf(instrument)} needsKeptReason={needsKeptReason} />
+          <RunFactsFields
+            form={form}
+            presets={presetsOf(instrument)}
+            needsKeptReason={needsKeptReason}
+          />
           <FormProblem error={record.error} />
           <FormActions>
             <SubmitButton isBusy={record.isPending}>{i18n.t("Save the run")}</SubmitButton>
@@ -137,7 +173,10 @@ function NewRun({ instruments }: { instruments: readonly InstrumentView[] }) {
   );
 }
 
-function coversWords(i18n: ReturnType<typeof useLingui>["i18n"], covers: RunView["covers"]): string {
+function coversWords(
+  i18n: ReturnType<typeof useLingui>["i18n"],
+  covers: RunView["covers"],
+): string {
   switch (covers) {
     case "shift":
       return i18n.t("covers the shift");
@@ -157,12 +196,46 @@ function Run({ run, instruments }: { run: RunView; instruments: readonly Instrum
   const drift = driftDb(run.checkBeforeDb, run.checkAfterDb);
   const figure = (levelDb: number | null) => formatLevel(levelDb, locale);
   const columns: DataColumn<Reading>[] = [
-    { id: "settings", head: i18n.t("Settings"), isRowHead: true, cell: ({ settings }) => settingsWords(i18n, settings, locale) },
-    { id: "dose", head: i18n.t("Dose"), kind: "figure", cell: ({ dosePct }) => formatDose(dosePct, locale) },
-    { id: "average", head: i18n.t("Average"), unit: "dB", kind: "figure", cell: ({ averageDb }) => figure(averageDb) },
-    { id: "lceq", head: i18n.t("LCeq"), unit: "dB", kind: "figure", cell: ({ lceqDb }) => figure(lceqDb) },
-    { id: "max", head: i18n.t("LASmax"), unit: "dB", kind: "figure", cell: ({ lasMaxDb }) => figure(lasMaxDb) },
-    { id: "peak", head: i18n.t("Peak"), unit: "dB", kind: "figure", cell: ({ peak }) => (peak ? `${figure(peak.levelDb)} ${peak.weighting}` : "–") },
+    {
+      id: "settings",
+      head: i18n.t("Settings"),
+      isRowHead: true,
+      cell: ({ settings }) => settingsWords(i18n, settings, locale),
+    },
+    {
+      id: "dose",
+      head: i18n.t("Dose"),
+      kind: "figure",
+      cell: ({ dosePct }) => formatDose(dosePct, locale),
+    },
+    {
+      id: "average",
+      head: i18n.t("Average"),
+      unit: "dB",
+      kind: "figure",
+      cell: ({ averageDb }) => figure(averageDb),
+    },
+    {
+      id: "lceq",
+      head: i18n.t("LCeq"),
+      unit: "dB",
+      kind: "figure",
+      cell: ({ lceqDb }) => figure(lceqDb),
+    },
+    {
+      id: "max",
+      head: i18n.t("LASmax"),
+      unit: "dB",
+      kind: "figure",
+      cell: ({ lasMaxDb }) => figure(lasMaxDb),
+    },
+    {
+      id: "peak",
+      head: i18n.t("Peak"),
+      unit: "dB",
+      kind: "figure",
+      cell: ({ peak }) => (peak ? `${figure(peak.levelDb)} ${peak.weighting}` : "–"),
+    },
   ];
   return (
     <>
@@ -172,14 +245,29 @@ function Run({ run, instruments }: { run: RunView; instruments: readonly Instrum
           <>
             <MarginNote title={i18n.t("Field checks")} isRuled>
               <p>
-                {i18n.t("Before {before}, after {after} dB.", { before: figure(run.checkBeforeDb), after: figure(run.checkAfterDb) })}{" "}
-                {drift !== null && (isDriftTooLarge(drift) ? <b>{i18n.t("{drift} dB apart: outside the tolerance.", { drift: figure(drift) })}</b> : i18n.t("{drift} dB apart: within the tolerance.", { drift: figure(drift) }))}
+                {i18n.t("Before {before}, after {after} dB.", {
+                  before: figure(run.checkBeforeDb),
+                  after: figure(run.checkAfterDb),
+                })}{" "}
+                {drift !== null &&
+                  (isDriftTooLarge(drift) ? (
+                    <b>
+                      {i18n.t("{drift} dB apart: outside the tolerance.", { drift: figure(drift) })}
+                    </b>
+                  ) : (
+                    i18n.t("{drift} dB apart: within the tolerance.", { drift: figure(drift) })
+                  ))}
               </p>
-              {run.keptReason && <p>{i18n.t("Kept, because: {reason}", { reason: run.keptReason })}</p>}
+              {run.keptReason && (
+                <p>{i18n.t("Kept, because: {reason}", { reason: run.keptReason })}</p>
+              )}
             </MarginNote>
             <MarginNote title={i18n.t("Revision {number}", { number: run.revision })}>
               <p>
-                {[run.authorName, formatInstant(run.recordedAt, timeZone, locale)].filter(Boolean).join(", ")}.
+                {[run.authorName, formatInstant(run.recordedAt, timeZone, locale)]
+                  .filter(Boolean)
+                  .join(", ")}
+                .
               </p>
             </MarginNote>
             {run.unusual && (
@@ -202,12 +290,18 @@ function Run({ run, instruments }: { run: RunView; instruments: readonly Instrum
               )}
             </>
           }
-          title={i18n.t("{instrument}, {date}", { instrument: run.instrumentName, date: formatDate(run.date, locale) })}
+          title={i18n.t("{instrument}, {date}", {
+            instrument: run.instrumentName,
+            date: formatDate(run.date, locale),
+          })}
           lead={
             run.isVoid ? (
               <b>{i18n.t("Struck: it counts for nothing.")}</b>
             ) : (
-              i18n.t("{duration}, {covers}.", { duration: formatDuration(run.durationMin, locale), covers: coversWords(i18n, run.covers) })
+              i18n.t("{duration}, {covers}.", {
+                duration: formatDuration(run.durationMin, locale),
+                covers: coversWords(i18n, run.covers),
+              })
             )
           }
           actions={
@@ -221,9 +315,18 @@ function Run({ run, instruments }: { run: RunView; instruments: readonly Instrum
             )
           }
         />
-        <DataTable caption={i18n.t("Readings of this run")} columns={columns} rows={run.readings} rowKey={({ settings }) => JSON.stringify(settings)} />
+        <DataTable
+          caption={i18n.t("Readings of this run")}
+          columns={columns}
+          rows={run.readings}
+          rowKey={({ settings }) => JSON.stringify(settings)}
+        />
         <p className="after-table">
-          {run.workerId && !run.isVoid && <TextLink to={paths.result(run.workerId, run.date)}>{i18n.t("The day it belongs to")}</TextLink>}
+          {run.workerId && !run.isVoid && (
+            <TextLink to={paths.result(run.workerId, run.date)}>
+              {i18n.t("The day it belongs to")}
+            </TextLink>
+          )}
           {run.shiftId && (
             <>
               {" · "}
@@ -233,7 +336,11 @@ function Run({ run, instruments }: { run: RunView; instruments: readonly Instrum
         </p>
         {doing === "correct" && (
           <Section title={i18n.t("Correct this run")} id="correct">
-            <CorrectRun run={run} instrument={instruments.find(({ id }) => id === run.instrumentId)} onDone={() => setDoing(null)} />
+            <CorrectRun
+              run={run}
+              instrument={instruments.find(({ id }) => id === run.instrumentId)}
+              onDone={() => setDoing(null)}
+            />
           </Section>
         )}
         {doing === "strike" && (
@@ -242,7 +349,9 @@ function Run({ run, instruments }: { run: RunView; instruments: readonly Instrum
           </Section>
         )}
       </PageBody>
-      <Folio>{i18n.t("What was recorded stays; a correction is the next revision, with its reason.")}</Folio>
+      <Folio>
+        {i18n.t("What was recorded stays; a correction is the next revision, with its reason.")}
+      </Folio>
     </>
   );
 }
@@ -264,22 +373,55 @@ function useRunConflictFields(): ConflictField<RunCorrection>[] {
   const locale = useLocale();
   const level = (levelDb: number | null): ReactNode => formatLevel(levelDb, locale);
   return [
-    { key: "durationMin", label: i18n.t("Run time"), show: ({ durationMin }) => formatDuration(durationMin, locale) },
+    {
+      key: "durationMin",
+      label: i18n.t("Run time"),
+      show: ({ durationMin }) => formatDuration(durationMin, locale),
+    },
     { key: "covers", label: i18n.t("It covers"), show: ({ covers }) => coversWords(i18n, covers) },
-    { key: "checkBeforeDb", label: i18n.t("Field check before"), show: ({ checkBeforeDb }) => level(checkBeforeDb) },
-    { key: "checkAfterDb", label: i18n.t("Field check after"), show: ({ checkAfterDb }) => level(checkAfterDb) },
-    { key: "keptReason", label: i18n.t("Why it is kept"), show: ({ keptReason }) => keptReason ?? "–" },
+    {
+      key: "checkBeforeDb",
+      label: i18n.t("Field check before"),
+      show: ({ checkBeforeDb }) => level(checkBeforeDb),
+    },
+    {
+      key: "checkAfterDb",
+      label: i18n.t("Field check after"),
+      show: ({ checkAfterDb }) => level(checkAfterDb),
+    },
+    {
+      key: "keptReason",
+      label: i18n.t("Why it is kept"),
+      show: ({ keptReason }) => keptReason ?? "–",
+    },
     {
       key: "readings",
       label: i18n.t("Readings"),
-      show: ({ readings }) => readings.map(({ averageDb, dosePct }) => (averageDb === null ? formatDose(dosePct, locale) : formatLevel(averageDb, locale))).join(", "),
+      show: ({ readings }) =>
+        readings
+          .map(({ averageDb, dosePct }) =>
+            averageDb === null ? formatDose(dosePct, locale) : formatLevel(averageDb, locale),
+          )
+          .join(", "),
     },
     { key: "unusual", label: i18n.t("Anything unusual"), show: ({ unusual }) => unusual ?? "–" },
-    { key: "isVoid", label: i18n.t("Struck"), show: ({ isVoid }) => (isVoid ? i18n.t("yes") : i18n.t("no")) },
+    {
+      key: "isVoid",
+      label: i18n.t("Struck"),
+      show: ({ isVoid }) => (isVoid ? i18n.t("yes") : i18n.t("no")),
+    },
   ];
 }
 
-function CorrectRun({ run, instrument, onDone }: { run: RunView; instrument: InstrumentView | undefined; onDone: () => void }) {
+function CorrectRun({
+  run,
+  instrument,
+  onDone,
+}: {
+  run: RunView;
+  instrument: InstrumentView | undefined;
+  onDone: () => void;
+}) {
   const { i18n } = useLingui();
   const saved = useRunSaved();
   const fields = useRunConflictFields();
@@ -295,12 +437,21 @@ function CorrectRun({ run, instrument, onDone }: { run: RunView; instrument: Ins
   });
   return (
     <>
-      <Form aria-label={i18n.t("Correct this run")} onSubmit={form.handleSubmit((values) => change.save(toRunCorrection(values), run.revision))}>
-        <RunFactsFields form={form} presets={presetsOf(instrument)} needsKeptReason={isCalibrationOut(instrument, run.date)} />
+      <Form
+        aria-label={i18n.t("Correct this run")}
+        onSubmit={form.handleSubmit((values) => change.save(toRunCorrection(values), run.revision))}
+      >
+        <RunFactsFields
+          form={form}
+          presets={presetsOf(instrument)}
+          needsKeptReason={isCalibrationOut(instrument, run.date)}
+        />
         <TextAreaField form={form} name="reason" label={i18n.t("Why it is corrected")} rows={2} />
         <FormProblem error={change.error} />
         <FormActions>
-          <SubmitButton isBusy={change.isSaving}>{i18n.t("Save revision {number}", { number: run.revision + 1 })}</SubmitButton>
+          <SubmitButton isBusy={change.isSaving}>
+            {i18n.t("Save revision {number}", { number: run.revision + 1 })}
+          </SubmitButton>
           <Button onClick={onDone}>{i18n.t("Leave as it was")}</Button>
         </FormActions>
       </Form>
@@ -328,7 +479,12 @@ function StrikeRun({ run, onDone }: { run: RunView; onDone: () => void }) {
   const saved = useRunSaved();
   const form = useSchemaForm(StrikeFields, { defaultValues: { reason: "" } });
   const strike = useMutation({
-    mutationFn: (reason: string) => api.put(`/runs/${run.id}`, { body: { ...bodyOf(run), reason, isVoid: true }, schema: RunView, ifMatch: String(run.revision) }),
+    mutationFn: (reason: string) =>
+      api.put(`/runs/${run.id}`, {
+        body: { ...bodyOf(run), reason, isVoid: true },
+        schema: RunView,
+        ifMatch: String(run.revision),
+      }),
     onSuccess: (next) => {
       saved(next);
       onDone();
@@ -336,8 +492,17 @@ function StrikeRun({ run, onDone }: { run: RunView; onDone: () => void }) {
     onError: showIssuesOn(form, i18n),
   });
   return (
-    <Form aria-label={i18n.t("Strike this run")} onSubmit={form.handleSubmit(({ reason }) => strike.mutate(reason))}>
-      <TextAreaField form={form} name="reason" label={i18n.t("Why it is struck")} rows={2} note={i18n.t("It stays on record and counts for nothing; its day is worked out anew.")} />
+    <Form
+      aria-label={i18n.t("Strike this run")}
+      onSubmit={form.handleSubmit(({ reason }) => strike.mutate(reason))}
+    >
+      <TextAreaField
+        form={form}
+        name="reason"
+        label={i18n.t("Why it is struck")}
+        rows={2}
+        note={i18n.t("It stays on record and counts for nothing; its day is worked out anew.")}
+      />
       <FormProblem error={strike.error} />
       <FormActions>
         <SubmitButton isBusy={strike.isPending}>{i18n.t("Strike it")}</SubmitButton>

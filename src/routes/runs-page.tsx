@@ -49,14 +49,27 @@ export function Component() {
       cell: (run) => (
         <span className="two-lines">
           <TextLink to={paths.run(run.id)}>{formatShortDate(run.date, locale)}</TextLink>
-          <span className="beneath">{run.isVoid ? i18n.t("struck") : run.revision > 1 ? i18n.t("revision {number}", { number: run.revision }) : " "}</span>
+          <span className="beneath">
+            {run.isVoid
+              ? i18n.t("struck")
+              : run.revision > 1
+                ? i18n.t("revision {number}", { number: run.revision })
+                : " "}
+          </span>
         </span>
       ),
     },
     {
       id: "worker",
       head: i18n.t("Worn by"),
-      cell: ({ workerId, workerName }) => (workerId ? <TextLink className="is-quiet is-name" to={paths.worker(workerId)}>{workerName}</TextLink> : "–"),
+      cell: ({ workerId, workerName }) =>
+        workerId ? (
+          <TextLink className="is-quiet is-name" to={paths.worker(workerId)}>
+            {workerName}
+          </TextLink>
+        ) : (
+          "–"
+        ),
     },
     {
       id: "instrument",
@@ -69,7 +82,13 @@ export function Component() {
       ),
       hidesOnPhone: true,
     },
-    { id: "time", head: i18n.t("Run time"), kind: "right", cell: ({ durationMin }) => formatDuration(durationMin, locale), hidesOnPhone: true },
+    {
+      id: "time",
+      head: i18n.t("Run time"),
+      kind: "right",
+      cell: ({ durationMin }) => formatDuration(durationMin, locale),
+      hidesOnPhone: true,
+    },
     {
       id: "readings",
       head: i18n.t("Readings"),
@@ -77,8 +96,20 @@ export function Component() {
         <ul className="run-readings">
           {readings.map((reading) => (
             <li key={JSON.stringify(reading.settings)}>
-              <span className="beneath">{i18n.t("{rate} dB, {threshold}", { rate: reading.settings.exchangeRateDb, threshold: reading.settings.thresholdDb === null ? i18n.t("no threshold") : i18n.t("threshold {value}", { value: reading.settings.thresholdDb }) })}</span>{" "}
-              <b className="mono">{reading.averageDb === null ? formatDose(reading.dosePct, locale) : formatLevel(reading.averageDb, locale)}</b>
+              <span className="beneath">
+                {i18n.t("{rate} dB, {threshold}", {
+                  rate: reading.settings.exchangeRateDb,
+                  threshold:
+                    reading.settings.thresholdDb === null
+                      ? i18n.t("no threshold")
+                      : i18n.t("threshold {value}", { value: reading.settings.thresholdDb }),
+                })}
+              </span>{" "}
+              <b className="mono">
+                {reading.averageDb === null
+                  ? formatDose(reading.dosePct, locale)
+                  : formatLevel(reading.averageDb, locale)}
+              </b>
             </li>
           ))}
         </ul>
@@ -92,9 +123,13 @@ export function Component() {
         return (
           <span className="two-lines">
             <span className={isDriftTooLarge(drift) ? "is-fault" : undefined}>
-              {drift === null ? i18n.t("not both") : i18n.t("{drift} dB apart", { drift: formatLevel(drift, locale) })}
+              {drift === null
+                ? i18n.t("not both")
+                : i18n.t("{drift} dB apart", { drift: formatLevel(drift, locale) })}
             </span>
-            {keptReason && <span className="beneath">{i18n.t("kept: {reason}", { reason: keptReason })}</span>}
+            {keptReason && (
+              <span className="beneath">{i18n.t("kept: {reason}", { reason: keptReason })}</span>
+            )}
           </span>
         );
       },
@@ -105,7 +140,9 @@ export function Component() {
       <PageBody>
         <PageHead
           title={i18n.t("Runs")}
-          lead={i18n.t("What instruments said, from out to back, each reading under its own settings.")}
+          lead={i18n.t(
+            "What instruments said, from out to back, each reading under its own settings.",
+          )}
           actions={
             <>
               {hasRole(user, "officer") && (
@@ -123,14 +160,25 @@ export function Component() {
               label={i18n.t("Site")}
               value={siteId ?? ""}
               onChange={(value) => narrow("site", value)}
-              choices={[{ value: "", label: i18n.t("All sites") }, ...user.sites.map(({ id, name }) => ({ value: id, label: name }))]}
+              choices={[
+                { value: "", label: i18n.t("All sites") },
+                ...user.sites.map(({ id, name }) => ({ value: id, label: name })),
+              ]}
             />
           )}
           <FilterSelect
             label={i18n.t("Instrument")}
             value={instrumentId ?? ""}
             onChange={(value) => narrow("instrument", value)}
-            choices={[{ value: "", label: i18n.t("Any instrument") }, ...(instruments.data?.rows ?? []).filter(({ kind }) => kind !== "calibrator").map(({ id, name, serialNumber }) => ({ value: id, label: `${name}, ${serialNumber}` }))]}
+            choices={[
+              { value: "", label: i18n.t("Any instrument") },
+              ...(instruments.data?.rows ?? [])
+                .filter(({ kind }) => kind !== "calibrator")
+                .map(({ id, name, serialNumber }) => ({
+                  value: id,
+                  label: `${name}, ${serialNumber}`,
+                })),
+            ]}
           />
         </FilterRow>
         <DataTable
@@ -142,12 +190,17 @@ export function Component() {
           state={list.isSuccess ? "ready" : list.isError ? "failed" : "loading"}
           error={list.error}
           onRetry={() => void list.refetch()}
-          more={{ hasMore: list.hasNextPage, isLoading: list.isFetchingNextPage, onMore: () => void list.fetchNextPage() }}
+          more={{
+            hasMore: list.hasNextPage,
+            isLoading: list.isFetchingNextPage,
+            onMore: () => void list.fetchNextPage(),
+          }}
           empty={
             <Empty title={i18n.t("No run is on record yet.")}>
               {hasRole(user, "officer") && (
                 <>
-                  {i18n.t("A run typed into the day grid stands here too.")} <TextLink to={paths.newRun}>{i18n.t("Record a run")}</TextLink>
+                  {i18n.t("A run typed into the day grid stands here too.")}{" "}
+                  <TextLink to={paths.newRun}>{i18n.t("Record a run")}</TextLink>
                 </>
               )}
             </Empty>

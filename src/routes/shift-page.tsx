@@ -7,7 +7,14 @@ import { formatDuration } from "../../shared/format/duration";
 import { ShiftView, ShiftVoid } from "../../shared/schemas/shift";
 import { Button } from "../components/button";
 import { Failed } from "../components/failed";
-import { Form, FormActions, SubmitButton, showIssuesOn, TextAreaField, useSchemaForm } from "../components/form";
+import {
+  Form,
+  FormActions,
+  SubmitButton,
+  showIssuesOn,
+  TextAreaField,
+  useSchemaForm,
+} from "../components/form";
 import { FormProblem } from "../components/form-problem";
 import { TextLink } from "../components/link";
 import { Folio, PageBody, PageHead, Section } from "../components/page";
@@ -28,7 +35,10 @@ export function Component() {
   if (data) return <ShiftSheet key={data.shiftId} shift={data} />;
   return (
     <PageBody>
-      <PageHead title={i18n.t("Shift")} lead={error ? undefined : <span className="loading-line" />} />
+      <PageHead
+        title={i18n.t("Shift")}
+        lead={error ? undefined : <span className="loading-line" />}
+      />
       {error && <Failed error={error} onRetry={() => void refetch()} />}
     </PageBody>
   );
@@ -45,7 +55,8 @@ function ShiftSheet({ shift }: { shift: Shift }) {
         <PageHead
           way={
             <>
-              <TextLink to={paths.workers}>{i18n.t("Workers")}</TextLink> / <TextLink to={paths.worker(shift.workerId)}>{shift.workerName}</TextLink>
+              <TextLink to={paths.workers}>{i18n.t("Workers")}</TextLink> /{" "}
+              <TextLink to={paths.worker(shift.workerId)}>{shift.workerName}</TextLink>
             </>
           }
           title={i18n.t("Shift of {date}", { date: formatDate(shift.date, locale) })}
@@ -59,7 +70,9 @@ function ShiftSheet({ shift }: { shift: Shift }) {
                   length: formatDuration(shift.lengthMin, locale),
                   rest: unaccountedWords(i18n, locale, shift.unaccounted),
                 })}{" "}
-                <TextLink to={paths.result(shift.workerId, shift.date)}>{i18n.t("How the day was judged")}</TextLink>
+                <TextLink to={paths.result(shift.workerId, shift.date)}>
+                  {i18n.t("How the day was judged")}
+                </TextLink>
               </>
             )
           }
@@ -87,34 +100,60 @@ function ShiftSheet({ shift }: { shift: Shift }) {
         {shift.note && <p className="after-table">{shift.note}</p>}
         <Section title={i18n.t("Revisions, latest first")} id="revisions">
           {shift.revisions.map((revision, index) => (
-            <Revision key={revision.number} revision={revision} before={shift.revisions[index + 1]} timeZone={shift.timeZone} />
+            <Revision
+              key={revision.number}
+              revision={revision}
+              before={shift.revisions[index + 1]}
+              timeZone={shift.timeZone}
+            />
           ))}
         </Section>
       </PageBody>
-      <Folio>{i18n.t("What was recorded stays; a correction is the next revision, with its reason.")}</Folio>
+      <Folio>
+        {i18n.t("What was recorded stays; a correction is the next revision, with its reason.")}
+      </Folio>
     </>
   );
 }
 
-function Revision({ revision, before, timeZone }: { revision: Shift["revisions"][number]; before: Shift["revisions"][number] | undefined; timeZone: string }) {
+function Revision({
+  revision,
+  before,
+  timeZone,
+}: {
+  revision: Shift["revisions"][number];
+  before: Shift["revisions"][number] | undefined;
+  timeZone: string;
+}) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const isChanged = (task: Shift["revisions"][number]["tasks"][number]) => {
     const earlier = before?.tasks.find(({ taskId }) => taskId === task.taskId);
-    return before !== undefined && (earlier?.durationMin !== task.durationMin || earlier?.wornPct !== task.wornPct);
+    return (
+      before !== undefined &&
+      (earlier?.durationMin !== task.durationMin || earlier?.wornPct !== task.wornPct)
+    );
   };
   return (
     <article className={`revision${revision.isVoid ? " is-void" : ""}`}>
       <h3>
         {i18n.t("Revision {number}", { number: revision.number })}{" "}
-        <span className="by">{[revision.authorName, formatInstant(revision.at, timeZone, locale)].filter(Boolean).join(", ")}</span>
+        <span className="by">
+          {[revision.authorName, formatInstant(revision.at, timeZone, locale)]
+            .filter(Boolean)
+            .join(", ")}
+        </span>
       </h3>
       {revision.reason && <p>“{revision.reason}”</p>}
       {revision.isVoid ? (
         <p>{i18n.t("Struck.")}</p>
       ) : (
         <p className="revision-tasks">
-          <span className={before && before.lengthMin !== revision.lengthMin ? "changed" : undefined}>{i18n.t("Length {length}", { length: formatDuration(revision.lengthMin, locale) })}</span>
+          <span
+            className={before && before.lengthMin !== revision.lengthMin ? "changed" : undefined}
+          >
+            {i18n.t("Length {length}", { length: formatDuration(revision.lengthMin, locale) })}
+          </span>
           {revision.tasks.map((task) => (
             <span key={task.taskId} className={isChanged(task) ? "changed" : undefined}>
               {taskWords(i18n, locale, task)}
@@ -131,7 +170,12 @@ function StrikeShift({ shift, onDone }: { shift: Shift; onDone: () => void }) {
   const saved = useShiftSaved();
   const form = useSchemaForm(ShiftVoid, { defaultValues: { reason: "" } });
   const strike = useMutation({
-    mutationFn: (reason: string) => api.delete(`/shifts/${shift.shiftId}`, { body: { reason }, schema: ShiftView, ifMatch: String(shift.revision) }),
+    mutationFn: (reason: string) =>
+      api.delete(`/shifts/${shift.shiftId}`, {
+        body: { reason },
+        schema: ShiftView,
+        ifMatch: String(shift.revision),
+      }),
     onSuccess: (next) => {
       saved(next);
       onDone();
@@ -139,8 +183,19 @@ function StrikeShift({ shift, onDone }: { shift: Shift; onDone: () => void }) {
     onError: showIssuesOn(form, i18n),
   });
   return (
-    <Form aria-label={i18n.t("Strike this shift")} onSubmit={form.handleSubmit(({ reason }) => strike.mutate(reason))}>
-      <TextAreaField form={form} name="reason" label={i18n.t("Why it is struck")} rows={2} note={i18n.t("For a shift that was never worked. It stays on record; its day is worked out anew.")} />
+    <Form
+      aria-label={i18n.t("Strike this shift")}
+      onSubmit={form.handleSubmit(({ reason }) => strike.mutate(reason))}
+    >
+      <TextAreaField
+        form={form}
+        name="reason"
+        label={i18n.t("Why it is struck")}
+        rows={2}
+        note={i18n.t(
+          "For a shift that was never worked. It stays on record; its day is worked out anew.",
+        )}
+      />
       <FormProblem error={strike.error} />
       <FormActions>
         <SubmitButton isBusy={strike.isPending}>{i18n.t("Strike it")}</SubmitButton>

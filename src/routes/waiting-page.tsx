@@ -48,7 +48,8 @@ export function Component() {
 
   const zoneOf = useMemo(() => {
     const zones = new Map(user.sites.map((site) => [site.id, site.timeZone]));
-    return (id: string | undefined) => (id === undefined ? undefined : zones.get(id)) ?? user.sites[0]?.timeZone ?? "UTC";
+    return (id: string | undefined) =>
+      (id === undefined ? undefined : zones.get(id)) ?? user.sites[0]?.timeZone ?? "UTC";
   }, [user.sites]);
   const nowTimeAt = (id: string) => formatTime(now.toISOString(), zoneOf(id));
   const items = data ? placeFindings(data.findings, data.crews, data.today, nowTimeAt) : [];
@@ -61,7 +62,10 @@ export function Component() {
 
   return (
     <>
-      <PageBody margin={data && <WaitingMargin data={data} zoneOf={zoneOf} ownName={user.name} />} marginWidthPx={220}>
+      <PageBody
+        margin={data && <WaitingMargin data={data} zoneOf={zoneOf} ownName={user.name} />}
+        marginWidthPx={220}
+      >
         <PageHead
           title={i18n.t("Waiting for you")}
           lead={
@@ -69,13 +73,19 @@ export function Component() {
               <>
                 {formatDay(data.today, locale)}.{" "}
                 <b>
-                  {i18n.t("{count, plural, =0 {Nothing needs a person.} one {One thing needs a person,} other {# things need a person,}}", {
-                    count: items.length,
-                  })}
+                  {i18n.t(
+                    "{count, plural, =0 {Nothing needs a person.} one {One thing needs a person,} other {# things need a person,}}",
+                    {
+                      count: items.length,
+                    },
+                  )}
                 </b>{" "}
                 {items.length > 0 &&
                   (urgent > 0
-                    ? i18n.t("{count, plural, other {# of them before the worker goes back into noise.}}", { count: urgent })
+                    ? i18n.t(
+                        "{count, plural, other {# of them before the worker goes back into noise.}}",
+                        { count: urgent },
+                      )
                     : i18n.t("none of them before the worker goes back into noise."))}
               </>
             ) : (
@@ -93,7 +103,9 @@ export function Component() {
                       name="site"
                       className="sr-only"
                       checked={(siteId ?? "") === site.id}
-                      onChange={() => setSearch(site.id === "" ? {} : { site: site.id }, { replace: true })}
+                      onChange={() =>
+                        setSearch(site.id === "" ? {} : { site: site.id }, { replace: true })
+                      }
                     />
                     <span>{site.name}</span>
                   </label>
@@ -110,7 +122,11 @@ export function Component() {
                 key={timeZone}
                 crews={crews}
                 nowTime={formatTime(now.toISOString(), timeZone)}
-                title={zones.length > 1 ? [...new Set(crews.map((crew) => siteName(crew.siteId)))].join(", ") : undefined}
+                title={
+                  zones.length > 1
+                    ? [...new Set(crews.map((crew) => siteName(crew.siteId)))].join(", ")
+                    : undefined
+                }
               />
             );
           })
@@ -131,12 +147,27 @@ export function Component() {
         />
         {data?.next && (
           <p className="table-foot">
-            {i18n.t("More are due later.")} <TextLink to={paths.findings}>{i18n.t("All findings")}</TextLink>
+            {i18n.t("More are due later.")}{" "}
+            <TextLink to={paths.findings}>{i18n.t("All findings")}</TextLink>
           </p>
         )}
-        {items.length > 0 && <Reading hasLimitAtEar={ruleSet?.criteria.some(({ judged, kind }) => judged === "at-the-ear" && kind === "limit") ?? true} />}
+        {items.length > 0 && (
+          <Reading
+            hasLimitAtEar={
+              ruleSet?.criteria.some(
+                ({ judged, kind }) => judged === "at-the-ear" && kind === "limit",
+              ) ?? true
+            }
+          />
+        )}
       </PageBody>
-      <Folio>{ruleSet && i18n.t("{title}, rule set version {version}.", { title: i18n._(ruleSet.title), version: ruleSet.version })}</Folio>
+      <Folio>
+        {ruleSet &&
+          i18n.t("{title}, rule set version {version}.", {
+            title: i18n._(ruleSet.title),
+            version: ruleSet.version,
+          })}
+      </Folio>
     </>
   );
 }
@@ -148,11 +179,14 @@ function Reading({ hasLimitAtEar }: { hasLimitAtEar: boolean }) {
     <p className="how-to-read">
       <span>
         <b>{hasLimitAtEar ? i18n.t("At the ear") : i18n.t("Without protection")}</b>{" "}
-        {i18n.t("the limit must not be exceeded. Tick past it: Over; whisker across it: Can’t tell yet.")}
+        {i18n.t(
+          "the limit must not be exceeded. Tick past it: Over; whisker across it: Can’t tell yet.",
+        )}
       </span>
       <span>{i18n.t("▲ while worn, against the target")}</span>
       <span>
-        <b>{i18n.t("Without protection")}</b> {i18n.t("the action values ask for controls, wearing and zones.")}
+        <b>{i18n.t("Without protection")}</b>{" "}
+        {i18n.t("the action values ask for controls, wearing and zones.")}
       </span>
     </p>
   );
@@ -172,18 +206,46 @@ function NextThing({ crews }: { crews: readonly CrewProgress[] }) {
 
 const CHECKS_SHOWN = 6;
 
-function WaitingMargin({ data, zoneOf, ownName }: { data: WaitingView; zoneOf: (siteId: string | undefined) => string; ownName: string }) {
+function WaitingMargin({
+  data,
+  zoneOf,
+  ownName,
+}: {
+  data: WaitingView;
+  zoneOf: (siteId: string | undefined) => string;
+  ownName: string;
+}) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  const siteOfWorker = new Map([...data.findings, ...data.toBeChecked].flatMap(({ worker, siteId }) => (worker ? [[worker.id, siteId] as const] : [])));
-  const zoneOfNotice = (workers: readonly { id: string }[]) => zoneOf(workers.map(({ id }) => siteOfWorker.get(id)).find(Boolean) ?? data.crews[0]?.siteId);
-  const isEmpty = data.outgoing.length + data.troubled.length + data.toBeChecked.length + data.calibrationsDue.length === 0;
+  const siteOfWorker = new Map(
+    [...data.findings, ...data.toBeChecked].flatMap(({ worker, siteId }) =>
+      worker ? [[worker.id, siteId] as const] : [],
+    ),
+  );
+  const zoneOfNotice = (workers: readonly { id: string }[]) =>
+    zoneOf(workers.map(({ id }) => siteOfWorker.get(id)).find(Boolean) ?? data.crews[0]?.siteId);
+  const isEmpty =
+    data.outgoing.length +
+      data.troubled.length +
+      data.toBeChecked.length +
+      data.calibrationsDue.length ===
+    0;
   return (
     <>
       {data.outgoing.map((entry) => (
-        <OutgoingNotice key={entry.entryId} entry={entry} ownName={ownName} timeZone={zoneOfNotice(entry.notices.flatMap(({ workers }) => workers))} />
+        <OutgoingNotice
+          key={entry.entryId}
+          entry={entry}
+          ownName={ownName}
+          timeZone={zoneOfNotice(entry.notices.flatMap(({ workers }) => workers))}
+        />
       ))}
-      {data.troubled.length > 0 && <TroubledNotices notices={data.troubled} timeZoneOf={({ workers }) => zoneOfNotice(workers)} />}
+      {data.troubled.length > 0 && (
+        <TroubledNotices
+          notices={data.troubled}
+          timeZoneOf={({ workers }) => zoneOfNotice(workers)}
+        />
+      )}
       {data.toBeChecked.length > 0 && (
         <MarginNote title={i18n.t("Done, to be checked")}>
           {data.toBeChecked.slice(0, CHECKS_SHOWN).map((finding) => (
@@ -225,7 +287,11 @@ function WaitingMargin({ data, zoneOf, ownName }: { data: WaitingView; zoneOf: (
       )}
       {isEmpty && (
         <MarginNote title={i18n.t("Nothing goes out")}>
-          <p>{i18n.t("No notice waits, none is in trouble, and no calibration runs out in the next two weeks.")}</p>
+          <p>
+            {i18n.t(
+              "No notice waits, none is in trouble, and no calibration runs out in the next two weeks.",
+            )}
+          </p>
         </MarginNote>
       )}
     </>

@@ -8,7 +8,14 @@ import { WorkerInput, WorkerView } from "../../shared/schemas/worker";
 import { localDate } from "../../shared/time/zone";
 import type { ConflictField } from "../components/conflict-dialog";
 import { Failed } from "../components/failed";
-import { CheckField, DateField, NumberField, SelectField, TextAreaField, TextField } from "../components/form";
+import {
+  CheckField,
+  DateField,
+  NumberField,
+  SelectField,
+  TextAreaField,
+  TextField,
+} from "../components/form";
 import { TextLink } from "../components/link";
 import { Folio, PageBody, PageHead } from "../components/page";
 import { RecordForm } from "../components/record-form";
@@ -19,8 +26,32 @@ import { references } from "../lib/references";
 import { paths } from "../paths";
 import "../styles/findings.css";
 
-const toBody = ({ siteId, jobId, employeeNumber, name, employer, employerName, language, hiredOn, leftOn, mustWear, personalTargetDb, requirementReason }: WorkerView): WorkerInput => ({
-  siteId, jobId, employeeNumber, name, employer, employerName, language, hiredOn, leftOn, mustWear, personalTargetDb, requirementReason,
+const toBody = ({
+  siteId,
+  jobId,
+  employeeNumber,
+  name,
+  employer,
+  employerName,
+  language,
+  hiredOn,
+  leftOn,
+  mustWear,
+  personalTargetDb,
+  requirementReason,
+}: WorkerView): WorkerInput => ({
+  siteId,
+  jobId,
+  employeeNumber,
+  name,
+  employer,
+  employerName,
+  language,
+  hiredOn,
+  leftOn,
+  mustWear,
+  personalTargetDb,
+  requirementReason,
 });
 
 export function Component() {
@@ -31,7 +62,10 @@ export function Component() {
   if (worker.data) return <WorkerForm key={worker.data.id} worker={worker.data} />;
   return (
     <PageBody>
-      <PageHead title={i18n.t("Worker")} lead={worker.error ? undefined : <span className="loading-line" />} />
+      <PageHead
+        title={i18n.t("Worker")}
+        lead={worker.error ? undefined : <span className="loading-line" />}
+      />
       {worker.error && <Failed error={worker.error} onRetry={() => void worker.refetch()} />}
     </PageBody>
   );
@@ -55,17 +89,54 @@ function WorkerForm({ worker }: { worker: WorkerView | null }) {
   const jobs = useQuery(references.jobs(worker?.siteId ?? firstSite?.id ?? ""));
   const fields: ConflictField<WorkerInput>[] = [
     { key: "name", label: i18n.t("Name"), show: ({ name }) => name },
-    { key: "employeeNumber", label: i18n.t("Employee number"), show: ({ employeeNumber }) => employeeNumber },
-    { key: "siteId", label: i18n.t("Site"), show: ({ siteId }) => sites.find(({ value }) => value === siteId)?.label ?? "–" },
-    { key: "jobId", label: i18n.t("Job"), show: ({ jobId }) => jobs.data?.rows.find(({ id }) => id === jobId)?.name ?? "–" },
-    { key: "employer", label: i18n.t("Employer"), show: ({ employer }) => employers.find(({ value }) => value === employer)?.label },
-    { key: "employerName", label: i18n.t("Employer’s name"), show: ({ employerName }) => text(employerName) },
+    {
+      key: "employeeNumber",
+      label: i18n.t("Employee number"),
+      show: ({ employeeNumber }) => employeeNumber,
+    },
+    {
+      key: "siteId",
+      label: i18n.t("Site"),
+      show: ({ siteId }) => sites.find(({ value }) => value === siteId)?.label ?? "–",
+    },
+    {
+      key: "jobId",
+      label: i18n.t("Job"),
+      show: ({ jobId }) => jobs.data?.rows.find(({ id }) => id === jobId)?.name ?? "–",
+    },
+    {
+      key: "employer",
+      label: i18n.t("Employer"),
+      show: ({ employer }) => employers.find(({ value }) => value === employer)?.label,
+    },
+    {
+      key: "employerName",
+      label: i18n.t("Employer’s name"),
+      show: ({ employerName }) => text(employerName),
+    },
     { key: "language", label: i18n.t("Language"), show: ({ language }) => LOCALE_NAMES[language] },
-    { key: "hiredOn", label: i18n.t("Hired"), show: ({ hiredOn }) => formatShortDate(hiredOn, locale) },
-    { key: "leftOn", label: i18n.t("Left"), show: ({ leftOn }) => (leftOn ? formatShortDate(leftOn, locale) : "–") },
+    {
+      key: "hiredOn",
+      label: i18n.t("Hired"),
+      show: ({ hiredOn }) => formatShortDate(hiredOn, locale),
+    },
+    {
+      key: "leftOn",
+      label: i18n.t("Left"),
+      show: ({ leftOn }) => (leftOn ? formatShortDate(leftOn, locale) : "–"),
+    },
     { key: "mustWear", label: i18n.t("Must wear"), show: ({ mustWear }) => yesNo(mustWear) },
-    { key: "personalTargetDb", label: i18n.t("At most at the ear"), show: ({ personalTargetDb }) => (personalTargetDb === null ? "–" : formatLimit(personalTargetDb, locale)) },
-    { key: "requirementReason", label: i18n.t("Reason"), show: ({ requirementReason }) => text(requirementReason) },
+    {
+      key: "personalTargetDb",
+      label: i18n.t("At most at the ear"),
+      show: ({ personalTargetDb }) =>
+        personalTargetDb === null ? "–" : formatLimit(personalTargetDb, locale),
+    },
+    {
+      key: "requirementReason",
+      label: i18n.t("Reason"),
+      show: ({ requirementReason }) => text(requirementReason),
+    },
   ];
   const leave = () => navigate(worker ? paths.worker(worker.id) : paths.workers);
   return (
@@ -127,29 +198,98 @@ function WorkerForm({ worker }: { worker: WorkerView | null }) {
               <>
                 <TextField form={form} name="name" label={i18n.t("Name")} />
                 <TextField form={form} name="employeeNumber" label={i18n.t("Employee number")} />
-                {sites.length > 1 && <SelectField form={form} name="siteId" label={i18n.t("Site")} choices={sites} />}
+                {sites.length > 1 && (
+                  <SelectField form={form} name="siteId" label={i18n.t("Site")} choices={sites} />
+                )}
                 <JobField siteId={siteId}>
-                  {(choices) => <SelectField form={form} name="jobId" label={i18n.t("Job")} choices={choices} emptyLabel={i18n.t("none yet")} isOptional note={i18n.t("Its nominal day fills the day grid in.")} />}
+                  {(choices) => (
+                    <SelectField
+                      form={form}
+                      name="jobId"
+                      label={i18n.t("Job")}
+                      choices={choices}
+                      emptyLabel={i18n.t("none yet")}
+                      isOptional
+                      note={i18n.t("Its nominal day fills the day grid in.")}
+                    />
+                  )}
                 </JobField>
-                <SelectField form={form} name="employer" label={i18n.t("Employer")} choices={employers} />
-                {form.watch("employer") !== "own" && <TextField form={form} name="employerName" label={i18n.t("Employer’s name")} isOptional />}
-                <SelectField form={form} name="language" label={i18n.t("Language")} choices={LOCALES.map((one) => ({ value: one, label: LOCALE_NAMES[one] }))} note={i18n.t("Mails and the worker’s own page speak it.")} />
+                <SelectField
+                  form={form}
+                  name="employer"
+                  label={i18n.t("Employer")}
+                  choices={employers}
+                />
+                {form.watch("employer") !== "own" && (
+                  <TextField
+                    form={form}
+                    name="employerName"
+                    label={i18n.t("Employer’s name")}
+                    isOptional
+                  />
+                )}
+                <SelectField
+                  form={form}
+                  name="language"
+                  label={i18n.t("Language")}
+                  choices={LOCALES.map((one) => ({ value: one, label: LOCALE_NAMES[one] }))}
+                  note={i18n.t("Mails and the worker’s own page speak it.")}
+                />
                 <DateField form={form} name="hiredOn" label={i18n.t("Hired")} />
-                <DateField form={form} name="leftOn" label={i18n.t("Left")} isOptional note={i18n.t("The last day of work here.")} />
-                <CheckField form={form} name="mustWear" label={i18n.t("Personal requirement")} text={i18n.t("Must wear a protector whatever the level")} />
-                <NumberField form={form} name="personalTargetDb" label={i18n.t("At most at the ear")} unit="dB(A)" isOptional note={i18n.t("A stricter target at the ear than the rule’s. 60 to 100.")} />
-                {needsReason && <TextAreaField form={form} name="requirementReason" label={i18n.t("Reason")} rows={3} isOptional note={i18n.t("Only officers see it: no supervisor, no auditor, no export.")} />}
+                <DateField
+                  form={form}
+                  name="leftOn"
+                  label={i18n.t("Left")}
+                  isOptional
+                  note={i18n.t("The last day of work here.")}
+                />
+                <CheckField
+                  form={form}
+                  name="mustWear"
+                  label={i18n.t("Personal requirement")}
+                  text={i18n.t("Must wear a protector whatever the level")}
+                />
+                <NumberField
+                  form={form}
+                  name="personalTargetDb"
+                  label={i18n.t("At most at the ear")}
+                  unit="dB(A)"
+                  isOptional
+                  note={i18n.t("A stricter target at the ear than the rule’s. 60 to 100.")}
+                />
+                {needsReason && (
+                  <TextAreaField
+                    form={form}
+                    name="requirementReason"
+                    label={i18n.t("Reason")}
+                    rows={3}
+                    isOptional
+                    note={i18n.t("Only officers see it: no supervisor, no auditor, no export.")}
+                  />
+                )}
               </>
             );
           }}
         </RecordForm>
       </PageBody>
-      <Folio>{i18n.t("A personal requirement holds from today on; days from today are judged by it.")}</Folio>
+      <Folio>
+        {i18n.t("A personal requirement holds from today on; days from today are judged by it.")}
+      </Folio>
     </>
   );
 }
 
-function JobField({ siteId, children }: { siteId: string; children: (choices: { value: string; label: string }[]) => React.ReactNode }) {
+function JobField({
+  siteId,
+  children,
+}: {
+  siteId: string;
+  children: (choices: { value: string; label: string }[]) => React.ReactNode;
+}) {
   const { data } = useQuery(references.jobs(siteId));
-  return children((data?.rows ?? []).filter(({ isArchived }) => !isArchived).map(({ id, name }) => ({ value: id, label: name })));
+  return children(
+    (data?.rows ?? [])
+      .filter(({ isArchived }) => !isArchived)
+      .map(({ id, name }) => ({ value: id, label: name })),
+  );
 }

@@ -4,22 +4,31 @@ import { type ReactNode, useEffect, useMemo } from "react";
 import { useLocation, useParams, useSearchParams } from "react-router-dom";
 import type { z } from "zod";
 import { formatDate, formatShortDate } from "../../shared/format/date";
-import { formatLimit } from "../../shared/format/level";
 import { formatDuration } from "../../shared/format/duration";
+import { formatLimit } from "../../shared/format/level";
 import { LOCALE_NAMES } from "../../shared/i18n/index";
 import type { DayFigures } from "../../shared/schemas/finding";
 import type { HistoryPage, WorkerView } from "../../shared/schemas/worker";
 import { localDate } from "../../shared/time/zone";
 import { Button, ButtonLink } from "../components/button";
-import { AtEarFigure, DayStrip, OutsideFigure, TableStripGround, TableStripScale, useDecidedBy, useStripFrame, useTableFrame } from "../components/day-figures";
 import { type DataColumn, DataTable } from "../components/data-table";
+import {
+  AtEarFigure,
+  DayStrip,
+  OutsideFigure,
+  TableStripGround,
+  TableStripScale,
+  useDecidedBy,
+  useStripFrame,
+  useTableFrame,
+} from "../components/day-figures";
 import { Empty } from "../components/empty";
 import { Failed } from "../components/failed";
 import { HistoryChart } from "../components/history-chart";
 import { TextButton, TextLink } from "../components/link";
 import { Folio, MarginNote, PageBody, PageHead, Section } from "../components/page";
 import { ProtectorWord } from "../components/protector-word";
-import { AssignForm, useOf } from "../features/assignments/assign-form";
+import { AssignForm, assignedUse } from "../features/assignments/assign-form";
 import { AssignmentsTable } from "../features/assignments/assignments-table";
 import { FindingsTable } from "../features/findings/findings-table";
 import { findingQueries } from "../features/findings/queries";
@@ -41,7 +50,10 @@ export function Component() {
   if (data) return <WorkerSheet key={data.id} worker={data} />;
   return (
     <PageBody>
-      <PageHead title={i18n.t("Worker")} lead={error ? undefined : <span className="loading-line" />} />
+      <PageHead
+        title={i18n.t("Worker")}
+        lead={error ? undefined : <span className="loading-line" />}
+      />
       {error && <Failed error={error} onRetry={() => void refetch()} />}
     </PageBody>
   );
@@ -54,7 +66,9 @@ function WorkerSheet({ worker }: { worker: WorkerView }) {
   const timeZone = user.sites.find(({ id }) => id === worker.siteId)?.timeZone ?? "UTC";
   const today = localDate(new Date(), timeZone);
   const isOfficer = hasRole(user, "officer");
-  const currentCrew = worker.crews.find(({ fromDate, toDate }) => fromDate <= today && (toDate === null || toDate >= today));
+  const currentCrew = worker.crews.find(
+    ({ fromDate, toDate }) => fromDate <= today && (toDate === null || toDate >= today),
+  );
   const hasRequirement = worker.mustWear || worker.personalTargetDb !== null;
   return (
     <>
@@ -70,7 +84,10 @@ function WorkerSheet({ worker }: { worker: WorkerView }) {
                     {crew.name}
                   </TextLink>{" "}
                   {crew.toDate
-                    ? i18n.t("{from} to {to}", { from: formatShortDate(crew.fromDate, locale), to: formatShortDate(crew.toDate, locale) })
+                    ? i18n.t("{from} to {to}", {
+                        from: formatShortDate(crew.fromDate, locale),
+                        to: formatShortDate(crew.toDate, locale),
+                      })
                     : i18n.t("since {date}", { date: formatShortDate(crew.fromDate, locale) })}
                   {crew.isLoan && i18n.t(", on loan")}
                 </p>
@@ -80,7 +97,11 @@ function WorkerSheet({ worker }: { worker: WorkerView }) {
               <MarginNote title={i18n.t("Personal requirement")} isRuled>
                 {worker.mustWear && <p>{i18n.t("Must wear a protector whatever the level.")}</p>}
                 {worker.personalTargetDb !== null && (
-                  <p>{i18n.t("At most {level} dB at the ear.", { level: formatLimit(worker.personalTargetDb, locale) })}</p>
+                  <p>
+                    {i18n.t("At most {level} dB at the ear.", {
+                      level: formatLimit(worker.personalTargetDb, locale),
+                    })}
+                  </p>
                 )}
                 {worker.requirementReason && (
                   <p>
@@ -97,8 +118,13 @@ function WorkerSheet({ worker }: { worker: WorkerView }) {
           title={worker.name}
           lead={
             worker.leftOn
-              ? i18n.t("{number}, left {date}.", { number: worker.employeeNumber, date: formatDate(worker.leftOn, locale) })
-              : [worker.employeeNumber, currentCrew?.name, worker.jobName].filter(Boolean).join(", ")
+              ? i18n.t("{number}, left {date}.", {
+                  number: worker.employeeNumber,
+                  date: formatDate(worker.leftOn, locale),
+                })
+              : [worker.employeeNumber, currentCrew?.name, worker.jobName]
+                  .filter(Boolean)
+                  .join(", ")
           }
           actions={
             worker.can.change && (
@@ -117,11 +143,20 @@ function WorkerSheet({ worker }: { worker: WorkerView }) {
         </div>
         {worker.can.issueCode && worker.leftOn === null && (
           <Section title={i18n.t("Sign-in")} id="sign-in">
-            <SignInSlip worker={worker} timeZone={timeZone} organizationName={user.organizationName} issuedBy={user.name} />
+            <SignInSlip
+              worker={worker}
+              timeZone={timeZone}
+              organizationName={user.organizationName}
+              issuedBy={user.name}
+            />
           </Section>
         )}
       </PageBody>
-      <Folio>{isOfficer ? i18n.t("Each day is judged by the rule set that was in force at the site on its date.") : null}</Folio>
+      <Folio>
+        {isOfficer
+          ? i18n.t("Each day is judged by the rule set that was in force at the site on its date.")
+          : null}
+      </Folio>
     </>
   );
 }
@@ -145,14 +180,19 @@ function Facts({ worker }: { worker: WorkerView }) {
       <Fact label={i18n.t("Employer")}>{employerWords(i18n, worker)}</Fact>
       <Fact label={i18n.t("Language")}>{LOCALE_NAMES[worker.language]}</Fact>
       <Fact label={i18n.t("Hired")}>{formatShortDate(worker.hiredOn, locale)}</Fact>
-      <Fact label={i18n.t("Sign-in")}>{worker.hasSignIn ? i18n.t("has one") : i18n.t("none yet")}</Fact>
+      <Fact label={i18n.t("Sign-in")}>
+        {worker.hasSignIn ? i18n.t("has one") : i18n.t("none yet")}
+      </Fact>
     </dl>
   );
 }
 
 function useHistory(workerId: string) {
   const history = useInfiniteQuery(workerQueries.history(workerId));
-  const days = useMemo(() => history.data?.pages.flatMap((page) => page.rows) ?? [], [history.data]);
+  const days = useMemo(
+    () => history.data?.pages.flatMap((page) => page.rows) ?? [],
+    [history.data],
+  );
   return { ...history, days };
 }
 
@@ -173,7 +213,9 @@ function LastDay({ worker }: { worker: WorkerView }) {
         </span>
         <OutsideFigure figures={last} />
         <span className="two-lines last-day-words">
-          <TextLink to={paths.result(worker.id, last.date)}>{i18n.t("{date}: how", { date: formatDate(last.date, locale) })}</TextLink>
+          <TextLink to={paths.result(worker.id, last.date)}>
+            {i18n.t("{date}: how", { date: formatDate(last.date, locale) })}
+          </TextLink>
           <DayProtector day={last} />
         </span>
       </div>
@@ -194,7 +236,8 @@ function Protectors({ worker, today }: { worker: WorkerView; today: string }) {
   const [search, setSearch] = useSearchParams();
   const asked = search.get("assign");
   useEffect(() => {
-    if (hash === "#protectors" || hash === "#findings") document.getElementById(hash.slice(1))?.scrollIntoView();
+    if (hash === "#protectors" || hash === "#findings")
+      document.getElementById(hash.slice(1))?.scrollIntoView();
   }, [hash]);
   const [innerModelId, outerModelId] = (asked ?? "").split(",").filter(Boolean);
   const close = () =>
@@ -207,10 +250,16 @@ function Protectors({ worker, today }: { worker: WorkerView; today: string }) {
       },
       { replace: true },
     );
-  const open = (use?: string) => setSearch({ assign: "", ...(use ? { use } : {}) }, { replace: true });
+  const open = (use?: string) =>
+    setSearch({ assign: "", ...(use ? { use } : {}) }, { replace: true });
   return (
     <Section title={i18n.t("Protectors by use")} id="protectors">
-      <AssignmentsTable rows={worker.assignments} today={today} canAssign={worker.can.assign} onChange={(assignment) => open(useOf(assignment))} />
+      <AssignmentsTable
+        rows={worker.assignments}
+        today={today}
+        canAssign={worker.can.assign}
+        onChange={(assignment) => open(assignedUse(assignment))}
+      />
       {worker.can.assign &&
         (asked === null ? (
           <p className="after-table">
@@ -244,7 +293,11 @@ function OpenFindings({ worker }: { worker: WorkerView }) {
         state={list.isSuccess ? "ready" : list.isError ? "failed" : "loading"}
         error={list.error}
         onRetry={() => void list.refetch()}
-        more={{ hasMore: list.hasNextPage, isLoading: list.isFetchingNextPage, onMore: () => void list.fetchNextPage() }}
+        more={{
+          hasMore: list.hasNextPage,
+          isLoading: list.isFetchingNextPage,
+          onMore: () => void list.fetchNextPage(),
+        }}
         empty={<Empty title={i18n.t("Nothing is open about this worker.")} />}
       />
     </Section>
@@ -276,7 +329,9 @@ function History({ worker }: { worker: WorkerView }) {
       isRowHead: true,
       cell: (day) => (
         <span className="two-lines">
-          <TextLink to={paths.result(worker.id, day.date)}>{formatShortDate(day.date, locale)}</TextLink>
+          <TextLink to={paths.result(worker.id, day.date)}>
+            {formatShortDate(day.date, locale)}
+          </TextLink>
           <span className="beneath">
             {day.origin === "imported" ? i18n.t("imported") : formatDuration(day.shiftMin, locale)}
             {day.isStale && i18n.t(", being worked out anew")}
@@ -284,10 +339,31 @@ function History({ worker }: { worker: WorkerView }) {
         </span>
       ),
     },
-    { id: "at-ear", head: i18n.t("At the ear"), unit: i18n.t("day, dB"), cell: (day) => <AtEarFigure figures={day} /> },
-    { id: "strip", kind: "strip", head: <TableStripScale frame={frame} />, widthPx: 216, filler: <TableStripGround frame={frame} />, cell: (day) => <DayStrip figures={day} isHidden /> },
-    { id: "outside", head: i18n.t("Without protection"), unit: i18n.t("day, dB"), cell: (day) => <OutsideFigure figures={day} /> },
-    { id: "todo", head: i18n.t("Protector, while worn"), cell: (day) => <DayProtector day={day} /> },
+    {
+      id: "at-ear",
+      head: i18n.t("At the ear"),
+      unit: i18n.t("day, dB"),
+      cell: (day) => <AtEarFigure figures={day} />,
+    },
+    {
+      id: "strip",
+      kind: "strip",
+      head: <TableStripScale frame={frame} />,
+      widthPx: 216,
+      filler: <TableStripGround frame={frame} />,
+      cell: (day) => <DayStrip figures={day} isHidden />,
+    },
+    {
+      id: "outside",
+      head: i18n.t("Without protection"),
+      unit: i18n.t("day, dB"),
+      cell: (day) => <OutsideFigure figures={day} />,
+    },
+    {
+      id: "todo",
+      head: i18n.t("Protector, while worn"),
+      cell: (day) => <DayProtector day={day} />,
+    },
   ];
   const chartDays = days.toReversed();
   const limit = frame?.limits[0];
@@ -325,7 +401,11 @@ function History({ worker }: { worker: WorkerView }) {
               state={history.isSuccess ? "ready" : history.isError ? "failed" : "loading"}
               error={history.error}
               onRetry={() => void history.refetch()}
-              more={{ hasMore: history.hasNextPage, isLoading: history.isFetchingNextPage, onMore: () => void history.fetchNextPage() }}
+              more={{
+                hasMore: history.hasNextPage,
+                isLoading: history.isFetchingNextPage,
+                onMore: () => void history.fetchNextPage(),
+              }}
               empty={<Empty title={i18n.t("No day of this worker is on record yet.")} />}
             />
           </div>

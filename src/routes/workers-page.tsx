@@ -24,7 +24,10 @@ export function Component() {
   const crewId = search.get("crew") ?? undefined;
   const includeLeft = search.get("left") === "true";
   const crews = useQuery(references.crews());
-  const list = useInfiniteQuery({ ...workerQueries.list({ search: asked, siteId, crewId, includeLeft }), placeholderData: keepPreviousData });
+  const list = useInfiniteQuery({
+    ...workerQueries.list({ search: asked, siteId, crewId, includeLeft }),
+    placeholderData: keepPreviousData,
+  });
   const rows = list.data?.pages.flatMap((page) => page.rows) ?? [];
   const isNarrowed = asked !== "" || siteId !== undefined || crewId !== undefined;
 
@@ -42,7 +45,9 @@ export function Component() {
     );
   }
 
-  const choices = (crews.data?.rows ?? []).filter((crew) => !crew.isArchived && (siteId === undefined || crew.siteId === siteId));
+  const choices = (crews.data?.rows ?? []).filter(
+    (crew) => !crew.isArchived && (siteId === undefined || crew.siteId === siteId),
+  );
   return (
     <>
       <PageBody>
@@ -71,16 +76,26 @@ export function Component() {
               label={i18n.t("Site")}
               value={siteId ?? ""}
               onChange={(value) => narrow("site", value)}
-              choices={[{ value: "", label: i18n.t("All sites") }, ...user.sites.map(({ id, name }) => ({ value: id, label: name }))]}
+              choices={[
+                { value: "", label: i18n.t("All sites") },
+                ...user.sites.map(({ id, name }) => ({ value: id, label: name })),
+              ]}
             />
           )}
           <FilterSelect
             label={i18n.t("Crew")}
             value={crewId ?? ""}
             onChange={(value) => narrow("crew", value)}
-            choices={[{ value: "", label: i18n.t("Any crew") }, ...choices.map(({ id, name }) => ({ value: id, label: name }))]}
+            choices={[
+              { value: "", label: i18n.t("Any crew") },
+              ...choices.map(({ id, name }) => ({ value: id, label: name })),
+            ]}
           />
-          <FilterCheck label={i18n.t("also those who left")} isChecked={includeLeft} onChange={(isChecked) => narrow("left", isChecked ? "true" : "")} />
+          <FilterCheck
+            label={i18n.t("also those who left")}
+            isChecked={includeLeft}
+            onChange={(isChecked) => narrow("left", isChecked ? "true" : "")}
+          />
         </FilterRow>
         <WorkersTable
           rows={rows}
@@ -88,7 +103,11 @@ export function Component() {
           state={list.isSuccess ? "ready" : list.isError ? "failed" : "loading"}
           error={list.error}
           onRetry={() => void list.refetch()}
-          more={{ hasMore: list.hasNextPage, isLoading: list.isFetchingNextPage, onMore: () => void list.fetchNextPage() }}
+          more={{
+            hasMore: list.hasNextPage,
+            isLoading: list.isFetchingNextPage,
+            onMore: () => void list.fetchNextPage(),
+          }}
           empty={
             isNarrowed ? (
               <Empty title={i18n.t("Nobody by that name, number, crew or site.")}>
@@ -102,12 +121,18 @@ export function Component() {
                 </TextButton>
               </Empty>
             ) : (
-              <Empty title={i18n.t("No worker is on record yet.")}>{i18n.t("Add one, or import shifts with their workers.")}</Empty>
+              <Empty title={i18n.t("No worker is on record yet.")}>
+                {i18n.t("Add one, or import shifts with their workers.")}
+              </Empty>
             )
           }
         />
       </PageBody>
-      <Folio>{i18n.t("At the ear and without protection: the last day on record, by the rule set of its date.")}</Folio>
+      <Folio>
+        {i18n.t(
+          "At the ear and without protection: the last day on record, by the rule set of its date.",
+        )}
+      </Folio>
     </>
   );
 }

@@ -3,7 +3,15 @@ import { useQuery } from "@tanstack/react-query";
 import { useRef } from "react";
 import { z } from "zod";
 import { Button } from "../../components/button";
-import { DateField, Form, FormActions, SelectField, showIssuesOn, SubmitButton, useSchemaForm } from "../../components/form";
+import {
+  DateField,
+  Form,
+  FormActions,
+  SelectField,
+  SubmitButton,
+  showIssuesOn,
+  useSchemaForm,
+} from "../../components/form";
 import { ApiError, newChangeKey } from "../../lib/api";
 import { problemText } from "../../lib/problem-text";
 import { references } from "../../lib/references";
@@ -20,8 +28,20 @@ const AssignFields = z
   })
   .check((context) => {
     const { innerModelId, outerModelId, fromDate, toDate } = context.value;
-    if (innerModelId === outerModelId) context.issues.push({ code: "custom", input: outerModelId, path: ["outerModelId"], params: { code: "same-protector-twice" } });
-    if (toDate !== null && toDate < fromDate) context.issues.push({ code: "custom", input: toDate, path: ["toDate"], params: { code: "ends-before-start" } });
+    if (innerModelId === outerModelId)
+      context.issues.push({
+        code: "custom",
+        input: outerModelId,
+        path: ["outerModelId"],
+        params: { code: "same-protector-twice" },
+      });
+    if (toDate !== null && toDate < fromDate)
+      context.issues.push({
+        code: "custom",
+        input: toDate,
+        path: ["toDate"],
+        params: { code: "ends-before-start" },
+      });
   });
 
 const EVERYWHERE = "everywhere";
@@ -33,8 +53,13 @@ export interface AssignStart {
   readonly outerModelId?: string;
 }
 
-export const useOf = ({ taskId, areaId }: { taskId: string | null; areaId: string | null }): string =>
-  taskId ? `task ${taskId}` : areaId ? `area ${areaId}` : EVERYWHERE;
+export const assignedUse = ({
+  taskId,
+  areaId,
+}: {
+  taskId: string | null;
+  areaId: string | null;
+}): string => (taskId ? `task ${taskId}` : areaId ? `area ${areaId}` : EVERYWHERE);
 
 /** One protector, or a plug under a muff, for a use from a date. */
 export function AssignForm({
@@ -59,13 +84,31 @@ export function AssignForm({
   const tasks = useQuery(references.tasks(siteId));
   const areas = useQuery(references.areas(siteId));
   const form = useSchemaForm(AssignFields, {
-    defaultValues: { use: start.use ?? EVERYWHERE, innerModelId: start.innerModelId ?? "", outerModelId: start.outerModelId ?? null, fromDate: today, toDate: null },
+    defaultValues: {
+      use: start.use ?? EVERYWHERE,
+      innerModelId: start.innerModelId ?? "",
+      outerModelId: start.outerModelId ?? null,
+      fromDate: today,
+      toDate: null,
+    },
   });
-  const models = (protectors.data?.rows ?? []).filter(({ isArchived }) => !isArchived).map(({ id, name }) => ({ value: id, label: name }));
+  const models = (protectors.data?.rows ?? [])
+    .filter(({ isArchived }) => !isArchived)
+    .map(({ id, name }) => ({ value: id, label: name }));
   const uses = [
     { value: EVERYWHERE, label: i18n.t("everywhere in noise") },
-    ...(areas.data?.rows ?? []).filter(({ isArchived }) => !isArchived).map(({ id, name }) => ({ value: `area ${id}`, label: i18n.t("in the area {name}", { name }) })),
-    ...(tasks.data?.rows ?? []).filter(({ isArchived }) => !isArchived).map(({ id, name }) => ({ value: `task ${id}`, label: i18n.t("in the task {name}", { name }) })),
+    ...(areas.data?.rows ?? [])
+      .filter(({ isArchived }) => !isArchived)
+      .map(({ id, name }) => ({
+        value: `area ${id}`,
+        label: i18n.t("in the area {name}", { name }),
+      })),
+    ...(tasks.data?.rows ?? [])
+      .filter(({ isArchived }) => !isArchived)
+      .map(({ id, name }) => ({
+        value: `task ${id}`,
+        label: i18n.t("in the task {name}", { name }),
+      })),
   ];
   const failed = protectors.error ?? tasks.error ?? areas.error;
   return (
@@ -74,7 +117,14 @@ export function AssignForm({
       onSubmit={form.handleSubmit(({ use, ...facts }) => {
         const [what, id = null] = use.split(" ");
         assign.mutate(
-          { body: { ...facts, taskId: what === "task" ? id : null, areaId: what === "area" ? id : null }, key: key.current },
+          {
+            body: {
+              ...facts,
+              taskId: what === "task" ? id : null,
+              areaId: what === "area" ? id : null,
+            },
+            key: key.current,
+          },
           {
             onSuccess: onDone,
             onError: (error) => {
@@ -86,10 +136,36 @@ export function AssignForm({
       })}
     >
       {failed && <p className="field-error">{problemText(i18n, failed)}</p>}
-      <SelectField form={form} name="use" label={i18n.t("Worn")} choices={uses} note={i18n.t("For a task or an area of its own, it takes the place of the one for everywhere.")} />
-      <SelectField form={form} name="innerModelId" label={i18n.t("Protector")} choices={models} emptyLabel={i18n.t("Choose one")} />
-      <SelectField form={form} name="outerModelId" label={i18n.t("A second over it")} choices={models} emptyLabel={i18n.t("none")} isOptional />
-      <DateField form={form} name="fromDate" label={i18n.t("From")} note={i18n.t("An open assignment of the same use ends the day before.")} />
+      <SelectField
+        form={form}
+        name="use"
+        label={i18n.t("Worn")}
+        choices={uses}
+        note={i18n.t(
+          "For a task or an area of its own, it takes the place of the one for everywhere.",
+        )}
+      />
+      <SelectField
+        form={form}
+        name="innerModelId"
+        label={i18n.t("Protector")}
+        choices={models}
+        emptyLabel={i18n.t("Choose one")}
+      />
+      <SelectField
+        form={form}
+        name="outerModelId"
+        label={i18n.t("A second over it")}
+        choices={models}
+        emptyLabel={i18n.t("none")}
+        isOptional
+      />
+      <DateField
+        form={form}
+        name="fromDate"
+        label={i18n.t("From")}
+        note={i18n.t("An open assignment of the same use ends the day before.")}
+      />
       <DateField form={form} name="toDate" label={i18n.t("Until, and with")} isOptional />
       {assign.error && (
         <p className="field-error" role="alert">

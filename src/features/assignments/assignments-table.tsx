@@ -7,7 +7,14 @@ import { AssignmentEnd, type AssignmentView } from "../../../shared/schemas/work
 import { Button } from "../../components/button";
 import { type DataColumn, DataTable } from "../../components/data-table";
 import { Empty } from "../../components/empty";
-import { DateField, Form, FormActions, showIssuesOn, SubmitButton, useSchemaForm } from "../../components/form";
+import {
+  DateField,
+  Form,
+  FormActions,
+  SubmitButton,
+  showIssuesOn,
+  useSchemaForm,
+} from "../../components/form";
 import { TextButton, TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
 import { problemText } from "../../lib/problem-text";
@@ -33,7 +40,9 @@ export function AssignmentsTable({
   const locale = useLocale();
   const [endingId, setEndingId] = useState<string | null>(null);
   const isOver = ({ toDate }: Assignment) => toDate !== null && toDate < today;
-  const sorted = rows.toSorted((a, b) => Number(isOver(a)) - Number(isOver(b)) || (a.fromDate < b.fromDate ? 1 : -1));
+  const sorted = rows.toSorted(
+    (a, b) => Number(isOver(a)) - Number(isOver(b)) || (a.fromDate < b.fromDate ? 1 : -1),
+  );
   const ending = rows.find(({ id }) => id === endingId);
   const columns: DataColumn<Assignment>[] = [
     {
@@ -41,7 +50,11 @@ export function AssignmentsTable({
       head: i18n.t("Worn"),
       isRowHead: true,
       cell: ({ use, useName }) =>
-        use === "everywhere" ? i18n.t("everywhere in noise") : use === "task" ? i18n.t("in the task {name}", { name: useName ?? "" }) : i18n.t("in the area {name}", { name: useName ?? "" }),
+        use === "everywhere"
+          ? i18n.t("everywhere in noise")
+          : use === "task"
+            ? i18n.t("in the task {name}", { name: useName ?? "" })
+            : i18n.t("in the area {name}", { name: useName ?? "" }),
     },
     {
       id: "protector",
@@ -53,7 +66,11 @@ export function AssignmentsTable({
       ),
     },
     { id: "from", head: i18n.t("From"), cell: ({ fromDate }) => formatShortDate(fromDate, locale) },
-    { id: "to", head: i18n.t("Until"), cell: ({ toDate }) => (toDate ? formatShortDate(toDate, locale) : i18n.t("now")) },
+    {
+      id: "to",
+      head: i18n.t("Until"),
+      cell: ({ toDate }) => (toDate ? formatShortDate(toDate, locale) : i18n.t("now")),
+    },
     ...(canAssign
       ? [
           {
@@ -64,7 +81,9 @@ export function AssignmentsTable({
               isOver(assignment) ? null : (
                 <span className="note-links is-end">
                   <TextButton onClick={() => onChange(assignment)}>{i18n.t("Change")}</TextButton>
-                  <TextButton onClick={() => setEndingId(assignment.id)}>{i18n.t("End")}</TextButton>
+                  <TextButton onClick={() => setEndingId(assignment.id)}>
+                    {i18n.t("End")}
+                  </TextButton>
                 </span>
               ),
           } satisfies DataColumn<Assignment>,
@@ -78,20 +97,51 @@ export function AssignmentsTable({
         columns={columns}
         rows={sorted}
         rowKey={({ id }) => id}
-        groupOf={(row) => (isOver(row) ? { key: "over", label: i18n.t("No longer") } : { key: "now", label: i18n.t("In use") })}
-        empty={<Empty title={i18n.t("No protector is assigned.")}>{canAssign ? i18n.t("Assign one below.") : null}</Empty>}
+        groupOf={(row) =>
+          isOver(row)
+            ? { key: "over", label: i18n.t("No longer") }
+            : { key: "now", label: i18n.t("In use") }
+        }
+        empty={
+          <Empty title={i18n.t("No protector is assigned.")}>
+            {canAssign ? i18n.t("Assign one below.") : null}
+          </Empty>
+        }
       />
-      {ending && <EndForm key={ending.id} assignment={ending} today={today} onDone={() => setEndingId(null)} />}
+      {ending && (
+        <EndForm
+          key={ending.id}
+          assignment={ending}
+          today={today}
+          onDone={() => setEndingId(null)}
+        />
+      )}
     </>
   );
 }
 
-function EndForm({ assignment, today, onDone }: { assignment: Assignment; today: string; onDone: () => void }) {
+function EndForm({
+  assignment,
+  today,
+  onDone,
+}: {
+  assignment: Assignment;
+  today: string;
+  onDone: () => void;
+}) {
   const { i18n } = useLingui();
   const end = useEndAssignment(assignment);
-  const form = useSchemaForm(AssignmentEnd, { defaultValues: { toDate: today < assignment.fromDate ? assignment.fromDate : today } });
+  const form = useSchemaForm(AssignmentEnd, {
+    defaultValues: { toDate: today < assignment.fromDate ? assignment.fromDate : today },
+  });
   return (
-    <Form className="inset-form" aria-label={i18n.t("End the assignment")} onSubmit={form.handleSubmit(({ toDate }) => end.mutate(toDate, { onSuccess: onDone, onError: showIssuesOn(form, i18n) }))}>
+    <Form
+      className="inset-form"
+      aria-label={i18n.t("End the assignment")}
+      onSubmit={form.handleSubmit(({ toDate }) =>
+        end.mutate(toDate, { onSuccess: onDone, onError: showIssuesOn(form, i18n) }),
+      )}
+    >
       <DateField
         form={form}
         name="toDate"

@@ -70,7 +70,10 @@ describe("time not accounted for", () => {
 
 describe("a reading", () => {
   test("is a level, or a dose with its sign", () => {
-    expect(parseCell("reading", "98.9", "en", words).value).toEqual({ kind: "level", levelDb: 98.9 });
+    expect(parseCell("reading", "98.9", "en", words).value).toEqual({
+      kind: "level",
+      levelDb: 98.9,
+    });
     expect(parseCell("reading", "63 %", "en", words).value).toEqual({ kind: "dose", dosePct: 63 });
   });
 

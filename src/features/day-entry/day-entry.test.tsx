@@ -1,5 +1,5 @@
 import { QueryClient, QueryClientProvider } from "@tanstack/react-query";
-import { render, screen, waitFor, within } from "@testing-library/react";
+import { act, render, screen, waitFor, within } from "@testing-library/react";
 import userEvent from "@testing-library/user-event";
 import { useState } from "react";
 import { MemoryRouter } from "react-router-dom";
@@ -32,8 +32,9 @@ function open(view: DayGridView) {
   return { user, ...page };
 }
 
-const row = (number: number) => screen.getByRole("row", { name: new RegExp(`Worker ${number}\\b`) });
-const cells = (number: number) => within(row(number)).getAllByRole("gridcell");
+// By its name's text: names by role are worked out for every cell of the grid, and that takes seconds here.
+const row = (number: number) => screen.getByText(`Worker ${number}`).closest("tr") as HTMLElement;
+const cells = (number: number) => row(number).querySelectorAll<HTMLElement>("[role=gridcell]");
 /** Start, Length, Rigging, Run-up, Teardown, Control room, Not accounted for, Sum … */
 const RUN_UP = 3;
 const SUM = 7;
@@ -70,12 +71,23 @@ const saveAll = (rows: DayRowInput[]) => ({
   })),
 });
 
-beforeEach(() => window.localStorage.clear());
+vi.setConfig({ testTimeout: 30_000 });
+
+beforeEach(() => {
+  window.localStorage.clear();
+  // jsdom has no modal dialogs.
+  HTMLDialogElement.prototype.showModal = function showModal() {
+    this.open = true;
+  };
+  HTMLDialogElement.prototype.close = function close() {
+    this.open = false;
+  };
+});
 
 describe("with the keyboard alone", () => {
   test("a departure is typed, Enter goes down, Tab right, and the day is worked out while typing", async () => {
     const { user } = open(testDay(3));
-    runUp(1).focus();
+    act(() => runUp(1).focus());
     expect(runUp(1)).toHaveTextContent("120 filled in");
     await user.keyboard("60");
     expect(cells(1)[SUM]).toHaveTextContent("420");
@@ -90,7 +102,7 @@ describe("with the keyboard alone", () => {
 
   test("Escape gives back what was there, F2 edits it", async () => {
     const { user } = open(testDay(2));
-    runUp(1).focus();
+    act(() => runUp(1).focus());
     await user.keyboard("99{Escape}");
     expect(runUp(1)).toHaveTextContent("120 filled in");
     await user.keyboard("{F2}");
@@ -99,7 +111,7 @@ describe("with the keyboard alone", () => {
 
   test("Ctrl+D fills down, Ctrl+Z takes it back", async () => {
     const { user } = open(testDay(3));
-    runUp(1).focus();
+    act(() => runUp(1).focus());
     await user.keyboard("75{Enter}{Control>}d{/Control}");
     expect(runUp(2)).toHaveTextContent(/^75$/);
     await user.keyboard("{Control>}z{/Control}");
@@ -108,7 +120,7 @@ describe("with the keyboard alone", () => {
 
   test("a marks absent and takes it back", async () => {
     const { user } = open(testDay(2));
-    runUp(1).focus();
+    act(() => runUp(1).focus());
     await user.keyboard("a");
     expect(row(1)).toHaveTextContent("all day, no exposure recorded");
     await user.keyboard("a");
@@ -117,7 +129,7 @@ describe("with the keyboard alone", () => {
 
   test("F8 goes to what is wrong, which says how to mend it", async () => {
     const { user } = open(testDay(3));
-    runUp(2).focus();
+    act(() => runUp(2).focus());
     await user.keyboard("300{Enter}");
     expect(screen.getByText("660 min in a 480 min shift.")).toBeVisible();
     expect(row(2)).toHaveTextContent("Not assessed");
@@ -129,7 +141,7 @@ describe("with the keyboard alone", () => {
 
   test("Escape and Tab leave the grid", async () => {
     const { user } = open(testDay(2));
-    runUp(1).focus();
+    act(() => runUp(1).focus());
     await user.keyboard("{Escape}{Tab}");
     expect(screen.getByRole("grid")).not.toContainElement(document.activeElement as HTMLElement);
   });
@@ -139,7 +151,7 @@ describe("saving", () => {
   test("sends what is typed or confirmed in one request, the rest waits and has the focus", async () => {
     const sent = answerSaving(saveAll);
     const { user } = open(testDay(4));
-    runUp(1).focus();
+    act(() => runUp(1).focus());
     await user.keyboard("60{Enter}{Shift>}{Enter}{/Shift}{Control>}{Enter}{/Control}");
     await waitFor(() => expect(screen.getByText("2 saved, 2 wait.")).toBeVisible());
     expect(sent).toHaveLength(1);
@@ -152,7 +164,7 @@ describe("saving", () => {
     vi.mocked(fetch).mockRejectedValue(new TypeError("no connection"));
     const view = testDay(2);
     const { user, unmount } = open(view);
-    runUp(1).focus();
+    act(() => runUp(1).focus());
     await user.keyboard("60{Control>}{Enter}{/Control}");
     await waitFor(() => expect(screen.getByText("Not saved.")).toBeVisible());
     const first = new Headers(vi.mocked(fetch).mock.calls[0]?.[1]?.headers).get("idempotency-key");
@@ -173,7 +185,7 @@ describe("saving", () => {
     const { user } = open(
       testDay([gridRow(1, { saved: savedShift(1) }), gridRow(2, { saved: savedShift(2) })]),
     );
-    runUp(1).focus();
+    act(() => runUp(1).focus());
     await user.keyboard("100{Enter}110{Control>}{Enter}{/Control}");
     const dialog = await screen.findByRole("dialog", { name: "Why do 2 saved shifts change?" });
     await user.type(within(dialog).getByRole("textbox", { name: "Reason" }), "typed wrongly");
@@ -195,7 +207,7 @@ describe("saving", () => {
     };
     answerSaving(() => ({ conflicts: [{ index: 0, workerId: workerId(1), current }] }));
     const { user } = open(testDay([gridRow(1, { saved: savedShift(1) })]));
-    runUp(1).focus();
+    act(() => runUp(1).focus());
     await user.keyboard("100{Control>}{Enter}{/Control}");
     await user.type(await screen.findByRole("textbox", { name: "Reason" }), "typed wrongly");
     await user.click(screen.getByRole("button", { name: "Save with this reason" }));
@@ -220,7 +232,7 @@ describe("saving", () => {
 
 test("the rows that are only filled in are confirmed after a look", async () => {
   const { user } = open(testDay(3));
-  runUp(1).focus();
+  act(() => runUp(1).focus());
   await user.keyboard("60{Enter}");
   await user.click(screen.getByRole("button", { name: "Confirm the other 2 as filled in" }));
   const dialog = screen.getByRole("dialog");
@@ -231,10 +243,8 @@ test("the rows that are only filled in are confirmed after a look", async () => 
 
 test("a pasted block says what was left out", async () => {
   const { user } = open(testDay(2));
-  runUp(1).focus();
+  act(() => runUp(1).focus());
   await user.paste("10\t20\n30\t40\n50\t60");
   expect(runUp(2)).toHaveTextContent(/^30$/);
-  expect(
-    screen.getByText("Pasted 2 × 2. 1 row did not fit and was left out."),
-  ).toBeVisible();
+  expect(screen.getByText("Pasted 2 × 2. 1 row did not fit and was left out.")).toBeVisible();
 });

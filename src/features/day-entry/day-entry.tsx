@@ -131,6 +131,7 @@ export function DayEntry({
       if (first !== -1) goTo({ row: first, column: suspectColumn(first) });
     } else if (outcome !== "failed") {
       setSaid(savedWords(outcome.saved, outcome.waiting));
+      setChoosing(outcome.conflict);
       if (outcome.firstWaiting !== null) {
         goTo({ row: outcome.firstWaiting, column: suspectColumn(outcome.firstWaiting) });
       }

@@ -530,7 +530,7 @@ const WIDE_PX: WidthOf = {
   length: 54,
   unaccounted: 80,
   sum: 44,
-  reading: 112,
+  reading: 110,
   protector: 106,
   worn: 56,
   ear: 120,
@@ -539,13 +539,13 @@ const WIDE_PX: WidthOf = {
   word: 112,
 };
 const NARROW_PX: WidthOf = {
-  who: 140,
+  who: 138,
   start: 58,
   length: 50,
   unaccounted: 74,
   sum: 42,
   reading: 78,
-  protector: 96,
+  protector: 90,
   worn: 52,
   ear: 0,
   strip: 172,
@@ -557,19 +557,16 @@ const LETTER_PX = 6.7;
 const BESIDE_PX = 9;
 const LONGEST_WORD = 12;
 
-function taskWidthPx(name: string, isWide: boolean): number {
+function taskWidthPx(name: string): number {
   const longest = Math.max(...name.split(/[\s-]+/).map((word) => word.length));
   const wordPx = Math.min(longest, LONGEST_WORD) * LETTER_PX + BESIDE_PX;
-  return Math.ceil(Math.max(isWide ? 50 : 46, wordPx));
+  return Math.ceil(Math.max(50, wordPx));
 }
 
 /** What the columns need at least; the protector takes what is left. */
 export function gridWidthPx(columns: readonly GridColumn[], isWide: boolean): number {
   const fixed = Object.values(isWide ? WIDE_PX : NARROW_PX).reduce((sum, width) => sum + width, 0);
-  return columns.reduce(
-    (sum, { task }) => sum + (task ? taskWidthPx(task.name, isWide) : 0),
-    fixed,
-  );
+  return columns.reduce((sum, { task }) => sum + (task ? taskWidthPx(task.name) : 0), fixed);
 }
 
 function GridHead({ frame }: { frame: GridFrame }) {
@@ -601,8 +598,7 @@ function GridHead({ frame }: { frame: GridFrame }) {
           <col
             key={id}
             style={{
-              width:
-                id === "protector" ? undefined : task ? taskWidthPx(task.name, isWide) : widths[id],
+              width: id === "protector" ? undefined : task ? taskWidthPx(task.name) : widths[id],
             }}
           />
         ))}

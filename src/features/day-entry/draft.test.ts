@@ -1,7 +1,15 @@
 import { describe, expect, test } from "vitest";
 import { cellOf } from "./cells";
 import { taskCell, wornCell } from "./columns";
-import { hasFilledCells, isBehind, isSettled, isSpoken, openDay, rebaseDraft, reduceDraft } from "./draft";
+import {
+  hasFilledCells,
+  isBehind,
+  isSettled,
+  isSpoken,
+  openDay,
+  rebaseDraft,
+  reduceDraft,
+} from "./draft";
 import { createDraftStore, restoreDraft } from "./draft-store";
 import { gridRow, savedShift, TASK, testDay, workerId } from "./test-day";
 

@@ -143,9 +143,7 @@ export function createRowEvaluator(view: DayGridView): EvaluateRow {
   const context = { tasks, models, site: { wearFromDb, creditsActivePart, usesUncertainty } };
   const known = new WeakMap<RowDraft, RowEvaluation>();
 
-  const startOf = rememberEach((time: string) =>
-    atLocalTime(view.date, time, view.crew.timeZone),
-  );
+  const startOf = rememberEach((time: string) => atLocalTime(view.date, time, view.crew.timeZone));
 
   function evaluate(row: RowDraft): RowEvaluation {
     const gridRow = gridRows.get(row.workerId);

@@ -466,7 +466,7 @@ function Word({ found, frame }: GridRowProps) {
     <ProtectorWord
       word={summary.word}
       beneath={
-        summary.decidingTaskName && summary.whileWornDb !== null ? (
+        frame.isWide && summary.decidingTaskName && summary.whileWornDb !== null ? (
           <>
             {summary.decidingTaskName}{" "}
             <span className="mono">{formatLevel(summary.whileWornDb, locale)}</span>

@@ -21,9 +21,21 @@ const at = (row: number, column: number) => ({
 const runUp = columns.findIndex(({ id }) => id === taskCell(TASK.runUp));
 
 test.each([
-  ["1\t2\n3\t4\n", [["1", "2"], ["3", "4"]]],
+  [
+    "1\t2\n3\t4\n",
+    [
+      ["1", "2"],
+      ["3", "4"],
+    ],
+  ],
   ["1\r\n2\r\n", [["1"], ["2"]]],
-  ['"a\tb"\t"say ""x"""\n"two\nlines"\t', [["a\tb", 'say "x"'], ["two\nlines", ""]]],
+  [
+    '"a\tb"\t"say ""x"""\n"two\nlines"\t',
+    [
+      ["a\tb", 'say "x"'],
+      ["two\nlines", ""],
+    ],
+  ],
   ["", []],
   ["7", [["7"]]],
 ])("%j is read as a spreadsheet writes it", (text, block) => {

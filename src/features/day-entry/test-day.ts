@@ -141,7 +141,8 @@ export function testDay(rows: number | readonly GridRow[] = 3, more: object = {}
         ],
       },
     ],
-    rows: typeof rows === "number" ? Array.from({ length: rows }, (_, at) => gridRow(at + 1)) : rows,
+    rows:
+      typeof rows === "number" ? Array.from({ length: rows }, (_, at) => gridRow(at + 1)) : rows,
     notices: null,
     ...more,
   });

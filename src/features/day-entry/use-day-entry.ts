@@ -29,6 +29,8 @@ export interface SaveOutcome {
   readonly waiting: number;
   /** Place of the first row that waits, if any. */
   readonly firstWaiting: number | null;
+  /** A row that met somebody else's revision: what stands has to be chosen. */
+  readonly conflict: string | null;
 }
 
 export interface DayEntryState {
@@ -152,7 +154,10 @@ export function useDayEntry(
       store.write(next, null);
       onView(after);
       const savedWorkers = new Set(reply.saved.map(({ workerId }) => workerId));
-      return outcome(savedWorkers.size, next, after);
+      return {
+        ...outcome(savedWorkers.size, next, after),
+        conflict: reply.conflicts[0]?.workerId ?? null,
+      };
     } catch (error) {
       if (!isOutcomeOpen(error)) pending.current = null;
       store.write(latest.current.draft, pending.current);
@@ -213,5 +218,6 @@ function outcome(saved: number, draft: DayDraft, view: DayGridView): SaveOutcome
     saved,
     waiting: countRows(draft, view).waiting,
     firstWaiting: first === -1 ? null : first,
+    conflict: null,
   };
 }

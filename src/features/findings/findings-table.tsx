@@ -4,8 +4,15 @@ import { noticedSentence, orderSentence, remedyFigure } from "../../../shared/fi
 import { findingStateWord, findingWord } from "../../../shared/findings/words";
 import { formatShortDate } from "../../../shared/format/date";
 import type { FindingRow } from "../../../shared/schemas/finding";
-import { AtEarFigure, DayStrip, OutsideFigure, TableStripGround, TableStripScale, useTableFrame } from "../../components/day-figures";
 import { type DataColumn, DataTable, type DataTableProps } from "../../components/data-table";
+import {
+  AtEarFigure,
+  DayStrip,
+  OutsideFigure,
+  TableStripGround,
+  TableStripScale,
+  useTableFrame,
+} from "../../components/day-figures";
 import { TextLink } from "../../components/link";
 import { protectorWordText } from "../../components/protector-word";
 import { useLocale } from "../../lib/i18n";
@@ -13,7 +20,10 @@ import { paths } from "../../paths";
 
 /** How far over at the ear: what sorts people. */
 const overBy = ({ figures }: FindingRow): number =>
-  figures?.atEarDb == null ? Number.NEGATIVE_INFINITY : { over: 2000, "cant-tell-yet": 1000, under: 0, "not-assessed": -1000 }[figures.verdictAtEar] + figures.atEarDb;
+  figures?.atEarDb == null
+    ? Number.NEGATIVE_INFINITY
+    : { over: 2000, "cant-tell-yet": 1000, under: 0, "not-assessed": -1000 }[figures.verdictAtEar] +
+      figures.atEarDb;
 
 export function FindingsTable({
   rows,
@@ -29,12 +39,23 @@ export function FindingsTable({
   const locale = useLocale();
   const days = useMemo(() => rows.map(({ figures }) => figures), [rows]);
   const frame = useTableFrame(days);
-  const sorted = useMemo(() => rows.toSorted((a, b) => Number(a.state === "closed") - Number(b.state === "closed") || overBy(b) - overBy(a)), [rows]);
+  const sorted = useMemo(
+    () =>
+      rows.toSorted(
+        (a, b) =>
+          Number(a.state === "closed") - Number(b.state === "closed") || overBy(b) - overBy(a),
+      ),
+    [rows],
+  );
   const columns: DataColumn<FindingRow>[] = [
     {
       id: "due",
       head: i18n.t("Due"),
-      cell: ({ dueOn, state }) => <span className="mono">{dueOn && state !== "closed" ? formatShortDate(dueOn, locale) : "–"}</span>,
+      cell: ({ dueOn, state }) => (
+        <span className="mono">
+          {dueOn && state !== "closed" ? formatShortDate(dueOn, locale) : "–"}
+        </span>
+      ),
     },
     {
       id: "wrong",
@@ -50,17 +71,36 @@ export function FindingsTable({
         </span>
       ),
     },
-    ...(hidesWorker ? [] : [{ id: "who", head: i18n.t("Who"), cell: (finding: FindingRow) => <Who finding={finding} /> }]),
-    { id: "at-ear", head: i18n.t("At the ear"), unit: i18n.t("day, dB"), cell: ({ figures }) => (figures ? <AtEarFigure figures={figures} /> : "–") },
+    ...(hidesWorker
+      ? []
+      : [
+          {
+            id: "who",
+            head: i18n.t("Who"),
+            cell: (finding: FindingRow) => <Who finding={finding} />,
+          },
+        ]),
+    {
+      id: "at-ear",
+      head: i18n.t("At the ear"),
+      unit: i18n.t("day, dB"),
+      cell: ({ figures }) => (figures ? <AtEarFigure figures={figures} /> : "–"),
+    },
     {
       id: "strip",
       kind: "strip",
       head: <TableStripScale frame={frame} />,
       widthPx: 216,
       filler: <TableStripGround frame={frame} />,
-      cell: ({ figures }) => (figures ? <DayStrip figures={figures} isHidden /> : <TableStripGround frame={frame} />),
+      cell: ({ figures }) =>
+        figures ? <DayStrip figures={figures} isHidden /> : <TableStripGround frame={frame} />,
     },
-    { id: "outside", head: i18n.t("Without protection"), unit: i18n.t("day, dB"), cell: ({ figures }) => (figures ? <OutsideFigure figures={figures} /> : "–") },
+    {
+      id: "outside",
+      head: i18n.t("Without protection"),
+      unit: i18n.t("day, dB"),
+      cell: ({ figures }) => (figures ? <OutsideFigure figures={figures} /> : "–"),
+    },
     {
       id: "todo",
       head: i18n.t("What to do, then what was noticed"),
@@ -72,7 +112,8 @@ export function FindingsTable({
             <b>{figure ? i18n.t("{order}: {figure}", { order, figure }) : order}</b>
             <span className="beneath">
               {noticedSentence(i18n, locale, finding.kind, finding.facts)}
-              {finding.daysCount > 1 && `; ${i18n.t("{count, plural, other {# days since {date}}}", { count: finding.daysCount, date: formatShortDate(finding.firstDate, locale) })}`}
+              {finding.daysCount > 1 &&
+                `; ${i18n.t("{count, plural, other {# days since {date}}}", { count: finding.daysCount, date: formatShortDate(finding.firstDate, locale) })}`}
             </span>
           </span>
         );
@@ -81,7 +122,14 @@ export function FindingsTable({
   ];
   return (
     <div className="findings-table stacked-table">
-      <DataTable caption={i18n.t("Findings, worst first")} columns={columns} rows={sorted} rowKey={({ id }) => id} isTwoLine {...rest} />
+      <DataTable
+        caption={i18n.t("Findings, worst first")}
+        columns={columns}
+        rows={sorted}
+        rowKey={({ id }) => id}
+        isTwoLine
+        {...rest}
+      />
     </div>
   );
 }
@@ -93,7 +141,9 @@ function Who({ finding: { worker, subjectName, crewName } }: { finding: FindingR
       <TextLink className="is-quiet is-name" to={paths.worker(worker.id)}>
         {worker.name}
       </TextLink>
-      <span className="beneath">{[worker.employeeNumber, crewName].filter(Boolean).join(", ")}</span>
+      <span className="beneath">
+        {[worker.employeeNumber, crewName].filter(Boolean).join(", ")}
+      </span>
     </span>
   );
 }

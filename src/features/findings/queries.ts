@@ -1,5 +1,15 @@
-import { infiniteQueryOptions, queryOptions, useMutation, useQueryClient } from "@tanstack/react-query";
-import { type FindingKind, FindingPage, type FindingStepInput, FindingView } from "../../../shared/schemas/finding";
+import {
+  infiniteQueryOptions,
+  queryOptions,
+  useMutation,
+  useQueryClient,
+} from "@tanstack/react-query";
+import {
+  type FindingKind,
+  FindingPage,
+  type FindingStepInput,
+  FindingView,
+} from "../../../shared/schemas/finding";
 import { api } from "../../lib/api";
 
 export interface FindingListFilter {
@@ -14,7 +24,12 @@ export const findingQueries = {
   list: (filter: FindingListFilter) =>
     infiniteQueryOptions({
       queryKey: [...findingQueries.all, "list", filter],
-      queryFn: ({ pageParam, signal }) => api.get("/findings", { query: { ...filter, cursor: pageParam }, schema: FindingPage, signal }),
+      queryFn: ({ pageParam, signal }) =>
+        api.get("/findings", {
+          query: { ...filter, cursor: pageParam },
+          schema: FindingPage,
+          signal,
+        }),
       initialPageParam: undefined as string | undefined,
       getNextPageParam: ({ next }) => next ?? undefined,
     }),
@@ -29,8 +44,21 @@ export const findingQueries = {
 export function useFindingStep(id: string) {
   const client = useQueryClient();
   return useMutation({
-    mutationFn: ({ body, revision, key }: { body: FindingStepInput; revision: number; key: string }) =>
-      api.post(`/findings/${id}/steps`, { body, schema: FindingView, ifMatch: String(revision), idempotencyKey: key }),
+    mutationFn: ({
+      body,
+      revision,
+      key,
+    }: {
+      body: FindingStepInput;
+      revision: number;
+      key: string;
+    }) =>
+      api.post(`/findings/${id}/steps`, {
+        body,
+        schema: FindingView,
+        ifMatch: String(revision),
+        idempotencyKey: key,
+      }),
     onSuccess: async (finding) => {
       client.setQueryData(findingQueries.one(id).queryKey, finding);
       await Promise.all([

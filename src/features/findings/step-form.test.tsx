@@ -15,18 +15,42 @@ afterEach(() => {
 const id = "00000000-0000-4000-8000-000000000001";
 const view = (overrides: Partial<FindingView> = {}): FindingView =>
   FindingView.parse({
-    id, kind: "protects-too-little", state: "new", criterion: "", useKey: "", facts: {}, firstDate: "2026-11-30", lastDate: "2026-11-30", daysCount: 1,
-    dueOn: "2026-12-01", siteId: id, worker: null, subjectName: null, crewName: null, figures: null, ownerName: null, revision: 1,
-    can: { handle: true, markDone: true, comment: true }, closingReason: null, closedOn: null, previousId: null, steps: [], evidence: [], told: [],
+    id,
+    kind: "protects-too-little",
+    state: "new",
+    criterion: "",
+    useKey: "",
+    facts: {},
+    firstDate: "2026-11-30",
+    lastDate: "2026-11-30",
+    daysCount: 1,
+    dueOn: "2026-12-01",
+    siteId: id,
+    worker: null,
+    subjectName: null,
+    crewName: null,
+    figures: null,
+    ownerName: null,
+    revision: 1,
+    can: { handle: true, markDone: true, comment: true },
+    closingReason: null,
+    closedOn: null,
+    previousId: null,
+    steps: [],
+    evidence: [],
+    told: [],
     ...overrides,
   });
 
-const reply = (status: number, body: unknown) => new Response(JSON.stringify(body), { status, headers: { "content-type": "application/json" } });
+const reply = (status: number, body: unknown) =>
+  new Response(JSON.stringify(body), { status, headers: { "content-type": "application/json" } });
 
 function show(finding: FindingView) {
   render(
     <TestLanguage>
-      <QueryClientProvider client={new QueryClient({ defaultOptions: { mutations: { networkMode: "always" } } })}>
+      <QueryClientProvider
+        client={new QueryClient({ defaultOptions: { mutations: { networkMode: "always" } } })}
+      >
         <StepForm finding={finding} />
       </QueryClientProvider>
     </TestLanguage>,
@@ -37,7 +61,11 @@ test("the steps are those of the state and of what the reader may do", () => {
   expect(stepsFor(view())).toEqual(["take-in-hand", "mark-done", "cannot", "close", "comment"]);
   expect(stepsFor(view({ state: "done" }))).toEqual(["reopen", "close", "comment"]);
   expect(stepsFor(view({ state: "closed" }))).toEqual(["comment"]);
-  expect(stepsFor(view({ can: { handle: false, markDone: true, comment: true } }))).toEqual(["mark-done", "cannot", "comment"]);
+  expect(stepsFor(view({ can: { handle: false, markDone: true, comment: true } }))).toEqual([
+    "mark-done",
+    "cannot",
+    "comment",
+  ]);
   expect(stepsFor(view({ can: { handle: false, markDone: false, comment: false } }))).toEqual([]);
 });
 
@@ -59,10 +87,26 @@ test("a stale step shows both versions; it goes again over the revision that sta
   HTMLDialogElement.prototype.close = function close(this: HTMLDialogElement) {
     this.open = false;
   };
-  const current = view({ revision: 2, state: "in-hand", steps: [{ id, kind: "state", fromState: "new", toState: "in-hand", text: null, authorName: "Y. Halloran", at: "2026-12-01T13:39:00Z" }] });
+  const current = view({
+    revision: 2,
+    state: "in-hand",
+    steps: [
+      {
+        id,
+        kind: "state",
+        fromState: "new",
+        toState: "in-hand",
+        text: null,
+        authorName: "Y. Halloran",
+        at: "2026-12-01T13:39:00Z",
+      },
+    ],
+  });
   const fetched = vi
     .fn()
-    .mockResolvedValueOnce(reply(412, { code: "stale", status: 412, title: "stale", params: {}, issues: [], current }))
+    .mockResolvedValueOnce(
+      reply(412, { code: "stale", status: 412, title: "stale", params: {}, issues: [], current }),
+    )
     .mockResolvedValueOnce(reply(201, view({ revision: 3, state: "done" })));
   vi.stubGlobal("fetch", fetched);
   show(view());

@@ -1,12 +1,20 @@
 import { useLingui } from "@lingui/react";
 import { useRef, useState } from "react";
 import { z } from "zod";
-import { type FindingStepInput, FindingView } from "../../../shared/schemas/finding";
 import { findingStateWord } from "../../../shared/findings/words";
 import { formatShortDate } from "../../../shared/format/date";
+import { type FindingStepInput, FindingView } from "../../../shared/schemas/finding";
 import { Button } from "../../components/button";
 import { Dialog } from "../../components/dialog";
-import { DateField, Form, FormActions, showIssuesOn, SubmitButton, TextAreaField, useSchemaForm } from "../../components/form";
+import {
+  DateField,
+  Form,
+  FormActions,
+  SubmitButton,
+  showIssuesOn,
+  TextAreaField,
+  useSchemaForm,
+} from "../../components/form";
 import { Status } from "../../components/status";
 import { ApiError, newChangeKey } from "../../lib/api";
 import { useLocale } from "../../lib/i18n";
@@ -34,7 +42,12 @@ export function stepsFor(finding: Pick<FindingView, "state" | "can">): StepKind[
     close: finding.can.handle,
     comment: finding.can.comment,
   };
-  return (Object.keys(STEPS_FROM) as StepKind[]).filter((kind) => rights[kind] && STEPS_FROM[kind].includes(finding.state) && !(kind === "take-in-hand" && finding.state === "in-hand"));
+  return (Object.keys(STEPS_FROM) as StepKind[]).filter(
+    (kind) =>
+      rights[kind] &&
+      STEPS_FROM[kind].includes(finding.state) &&
+      !(kind === "take-in-hand" && finding.state === "in-hand"),
+  );
 }
 
 /** What a person does about a finding, chosen first, then said. */
@@ -103,7 +116,11 @@ interface StepProps {
 }
 
 function Step(props: StepProps) {
-  return props.kind === "take-in-hand" ? <DueForm {...props} /> : <TextForm {...props} kind={props.kind} />;
+  return props.kind === "take-in-hand" ? (
+    <DueForm {...props} />
+  ) : (
+    <TextForm {...props} kind={props.kind} />
+  );
 }
 
 function useSend({ finding, onDone }: StepProps) {
@@ -147,9 +164,21 @@ function DueForm(props: StepProps) {
   return (
     <Form
       aria-label={props.label}
-      onSubmit={form.handleSubmit(({ dueOn }) => send.submit({ kind: "take-in-hand", dueOn }, props.finding.revision, showIssuesOn(form, i18n)))}
+      onSubmit={form.handleSubmit(({ dueOn }) =>
+        send.submit(
+          { kind: "take-in-hand", dueOn },
+          props.finding.revision,
+          showIssuesOn(form, i18n),
+        ),
+      )}
     >
-      <DateField form={form} name="dueOn" label={i18n.t("Due")} note={i18n.t("By when you want it done. Empty leaves the date as it is.")} isOptional />
+      <DateField
+        form={form}
+        name="dueOn"
+        label={i18n.t("Due")}
+        note={i18n.t("By when you want it done. Empty leaves the date as it is.")}
+        isOptional
+      />
       <StepEnd send={send} {...props} />
     </Form>
   );
@@ -169,21 +198,33 @@ function TextForm(props: StepProps & { kind: Exclude<StepKind, "take-in-hand"> }
     comment: i18n.t("Comment"),
   };
   return (
-    <Form aria-label={props.label} onSubmit={form.handleSubmit(({ text }) => send.submit({ kind, text }, props.finding.revision, showIssuesOn(form, i18n)))}>
+    <Form
+      aria-label={props.label}
+      onSubmit={form.handleSubmit(({ text }) =>
+        send.submit({ kind, text }, props.finding.revision, showIssuesOn(form, i18n)),
+      )}
+    >
       <TextAreaField
         form={form}
         name="text"
         label={labels[kind]}
         rows={3}
         isOptional={kind === "mark-done"}
-        note={kind === "close" ? i18n.t("It comes back only for a day dated after today.") : undefined}
+        note={
+          kind === "close" ? i18n.t("It comes back only for a day dated after today.") : undefined
+        }
       />
       <StepEnd send={send} {...props} />
     </Form>
   );
 }
 
-function StepEnd({ send, label, finding, onCancel }: StepProps & { send: ReturnType<typeof useSend> }) {
+function StepEnd({
+  send,
+  label,
+  finding,
+  onCancel,
+}: StepProps & { send: ReturnType<typeof useSend> }) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const isConflict = send.error instanceof ApiError && send.error.status === 412;
@@ -205,10 +246,24 @@ function StepEnd({ send, label, finding, onCancel }: StepProps & { send: ReturnT
         lead={i18n.t("Nothing of yours is lost; choose what stands.")}
         actions={
           <>
-            <Button kind="primary" isBusy={send.isPending} onClick={() => { send.forget(); send.again(); }}>
+            <Button
+              kind="primary"
+              isBusy={send.isPending}
+              onClick={() => {
+                send.forget();
+                send.again();
+              }}
+            >
               {i18n.t("{step} all the same", { step: label })}
             </Button>
-            <Button onClick={() => { send.forget(); onCancel(); }}>{i18n.t("Keep what was saved")}</Button>
+            <Button
+              onClick={() => {
+                send.forget();
+                onCancel();
+              }}
+            >
+              {i18n.t("Keep what was saved")}
+            </Button>
           </>
         }
       >
@@ -218,19 +273,25 @@ function StepEnd({ send, label, finding, onCancel }: StepProps & { send: ReturnT
               <tr>
                 <th scope="col">{i18n.t("Finding")}</th>
                 <th scope="col">{i18n.t("You saw")}</th>
-                <th scope="col">{i18n.t("Saved, revision {revision}", { revision: send.current.revision })}</th>
+                <th scope="col">
+                  {i18n.t("Saved, revision {revision}", { revision: send.current.revision })}
+                </th>
               </tr>
             </thead>
             <tbody>
               <tr>
                 <th scope="row">{i18n.t("State")}</th>
                 <td>{findingStateWord(i18n, finding.state)}</td>
-                <td className={finding.state === send.current.state ? undefined : "differs"}>{findingStateWord(i18n, send.current.state)}</td>
+                <td className={finding.state === send.current.state ? undefined : "differs"}>
+                  {findingStateWord(i18n, send.current.state)}
+                </td>
               </tr>
               <tr>
                 <th scope="row">{i18n.t("Due")}</th>
                 <td>{finding.dueOn ? formatShortDate(finding.dueOn, locale) : "–"}</td>
-                <td className={finding.dueOn === send.current.dueOn ? undefined : "differs"}>{send.current.dueOn ? formatShortDate(send.current.dueOn, locale) : "–"}</td>
+                <td className={finding.dueOn === send.current.dueOn ? undefined : "differs"}>
+                  {send.current.dueOn ? formatShortDate(send.current.dueOn, locale) : "–"}
+                </td>
               </tr>
               <tr>
                 <th scope="row">{i18n.t("Last step")}</th>

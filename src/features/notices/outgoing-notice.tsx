@@ -14,39 +14,68 @@ import { problemText } from "../../lib/problem-text";
 import { noticeTextQuery, useHandleNotices } from "./queries";
 
 /** Before anybody is told: who, when and about whom, and time to look. */
-export function OutgoingNotice({ entry, timeZone, ownName }: { entry: EntryNotices; timeZone: string; ownName: string }) {
+export function OutgoingNotice({
+  entry,
+  timeZone,
+  ownName,
+}: {
+  entry: EntryNotices;
+  timeZone: string;
+  ownName: string;
+}) {
   const { i18n } = useLingui();
   const [isLooking, setIsLooking] = useState(false);
   const handle = useHandleNotices(entry.entryId);
   const isHeld = entry.state === "held";
-  const recipients = [...new Set(entry.notices.map(({ recipientName }) => recipientName))].map((name) => (name === ownName ? i18n.t("you") : name));
-  const workers = [...new Map(entry.notices.flatMap((notice) => notice.workers).map((worker) => [worker.id, worker])).values()];
+  const recipients = [...new Set(entry.notices.map(({ recipientName }) => recipientName))].map(
+    (name) => (name === ownName ? i18n.t("you") : name),
+  );
+  const workers = [
+    ...new Map(
+      entry.notices.flatMap((notice) => notice.workers).map((worker) => [worker.id, worker]),
+    ).values(),
+  ];
   const kinds = [...new Set(workers.flatMap((worker) => worker.kinds))] as FindingKind[];
   return (
     <MarginNote
       isRuled
       title={
         isHeld
-          ? i18n.t("Held: {count, plural, one {# person is not told} other {# people are not told}}", { count: entry.people })
-          : i18n.t("{count, plural, one {# person will be told at {time}} other {# people will be told at {time}}}", {
-              count: entry.people,
-              time: entry.notBefore ? formatTime(entry.notBefore, timeZone) : "–",
-            })
+          ? i18n.t(
+              "Held: {count, plural, one {# person is not told} other {# people are not told}}",
+              { count: entry.people },
+            )
+          : i18n.t(
+              "{count, plural, one {# person will be told at {time}} other {# people will be told at {time}}}",
+              {
+                count: entry.people,
+                time: entry.notBefore ? formatTime(entry.notBefore, timeZone) : "–",
+              },
+            )
       }
     >
       <p>
         {recipients.join(", ")}
-        {workers.length > 0 && i18n.t(", about {names}", { names: workers.map(({ name }) => name).join(", ") })}
-        {kinds.length > 0 && `: ${kinds.map((kind) => findingWord(i18n, kind).toLocaleLowerCase(i18n.locale)).join(", ")}`}.
+        {workers.length > 0 &&
+          i18n.t(", about {names}", { names: workers.map(({ name }) => name).join(", ") })}
+        {kinds.length > 0 &&
+          `: ${kinds.map((kind) => findingWord(i18n, kind).toLocaleLowerCase(i18n.locale)).join(", ")}`}
+        .
       </p>
       <p className="note-links">
         <TextButton onClick={() => setIsLooking(true)}>{i18n.t("Look")}</TextButton>
         {!isHeld && (
-          <TextButton aria-disabled={handle.isPending || undefined} onClick={() => handle.isPending || handle.mutate("hold")}>
+          <TextButton
+            aria-disabled={handle.isPending || undefined}
+            onClick={() => handle.isPending || handle.mutate("hold")}
+          >
             {i18n.t("Hold")}
           </TextButton>
         )}
-        <TextButton aria-disabled={handle.isPending || undefined} onClick={() => handle.isPending || handle.mutate("send-now")}>
+        <TextButton
+          aria-disabled={handle.isPending || undefined}
+          onClick={() => handle.isPending || handle.mutate("send-now")}
+        >
           {i18n.t("Send now")}
         </TextButton>
       </p>
@@ -86,7 +115,15 @@ export function OutgoingNotice({ entry, timeZone, ownName }: { entry: EntryNotic
 }
 
 /** Every mail of an entry as it would read now, one after the other. */
-export function LookAtNotices({ notices, onClose, actions }: { notices: readonly Pick<NoticeRow, "id" | "recipientName">[]; onClose: () => void; actions: React.ReactNode }) {
+export function LookAtNotices({
+  notices,
+  onClose,
+  actions,
+}: {
+  notices: readonly Pick<NoticeRow, "id" | "recipientName">[];
+  onClose: () => void;
+  actions: React.ReactNode;
+}) {
   const { i18n } = useLingui();
   return (
     <Dialog isOpen onClose={onClose} title={i18n.t("What they will read")} actions={actions}>

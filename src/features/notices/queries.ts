@@ -1,6 +1,6 @@
 import { queryOptions, useMutation, useQueryClient } from "@tanstack/react-query";
-import type { EntryNotices, NoticeText } from "../../../shared/schemas/notice";
 import type { z } from "zod";
+import type { EntryNotices, NoticeText } from "../../../shared/schemas/notice";
 import { api } from "../../lib/api";
 import { ownReply } from "../../lib/own-reply";
 
@@ -18,8 +18,12 @@ export const noticeTextQuery = (id: string) =>
 export function useHandleNotices(entryId: string) {
   const client = useQueryClient();
   return useMutation({
-    mutationFn: (action: "hold" | "send-now") => api.post(`/entries/${entryId}/notices/actions`, { body: { action }, schema: entryReply }),
+    mutationFn: (action: "hold" | "send-now") =>
+      api.post(`/entries/${entryId}/notices/actions`, { body: { action }, schema: entryReply }),
     onSettled: () =>
-      Promise.all([client.invalidateQueries({ queryKey: ["waiting"] }), client.invalidateQueries({ queryKey: ["notices"] })]),
+      Promise.all([
+        client.invalidateQueries({ queryKey: ["waiting"] }),
+        client.invalidateQueries({ queryKey: ["notices"] }),
+      ]),
   });
 }

@@ -10,7 +10,13 @@ import { LookAtNotices } from "./outgoing-notice";
 import { useHandleNotices } from "./queries";
 
 /** Notices that the mail server has not taken, or of which nobody knows whether they arrived. */
-export function TroubledNotices({ notices, timeZoneOf }: { notices: readonly NoticeRow[]; timeZoneOf: (notice: NoticeRow) => string }) {
+export function TroubledNotices({
+  notices,
+  timeZoneOf,
+}: {
+  notices: readonly NoticeRow[];
+  timeZoneOf: (notice: NoticeRow) => string;
+}) {
   const { i18n } = useLingui();
   return (
     <MarginNote title={i18n.t("Notice not sent")}>
@@ -26,20 +32,36 @@ function TroubledNotice({ notice, timeZone }: { notice: NoticeRow; timeZone: str
   const { i18n } = useLingui();
   const handle = useHandleNotices(notice.entryId);
   const [isLooking, setIsLooking] = useState(false);
-  const values = { name: notice.recipientName, tries: notice.tries, time: formatTime(notice.notBefore, timeZone) };
+  const values = {
+    name: notice.recipientName,
+    tries: notice.tries,
+    time: formatTime(notice.notBefore, timeZone),
+  };
   return (
     <div className="troubled">
       <p>
         {notice.state === "possibly-sent"
-          ? i18n.t("{name}: possibly sent; the mail server did not answer. It is sent once more.", values)
+          ? i18n.t(
+              "{name}: possibly sent; the mail server did not answer. It is sent once more.",
+              values,
+            )
           : notice.state === "failed"
-            ? i18n.t("{name}: refused after {tries, plural, one {# try} other {# tries}}; it is not tried again. Tell them yourself.", values)
-            : i18n.t("{name}: the mail server refused it; {tries, plural, one {# try} other {# tries}} so far, it is tried again.", values)}
+            ? i18n.t(
+                "{name}: refused after {tries, plural, one {# try} other {# tries}}; it is not tried again. Tell them yourself.",
+                values,
+              )
+            : i18n.t(
+                "{name}: the mail server refused it; {tries, plural, one {# try} other {# tries}} so far, it is tried again.",
+                values,
+              )}
       </p>
       <p className="note-links">
         <TextButton onClick={() => setIsLooking(true)}>{i18n.t("Look")}</TextButton>
         {notice.state === "waiting" && (
-          <TextButton aria-disabled={handle.isPending || undefined} onClick={() => handle.isPending || handle.mutate("send-now")}>
+          <TextButton
+            aria-disabled={handle.isPending || undefined}
+            onClick={() => handle.isPending || handle.mutate("send-now")}
+          >
             {i18n.t("Send now")}
           </TextButton>
         )}

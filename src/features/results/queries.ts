@@ -6,7 +6,8 @@ import { api } from "../../lib/api";
 export const dayResultQuery = (workerId: string, date: string) =>
   queryOptions({
     queryKey: ["results", "day", workerId, date],
-    queryFn: ({ signal }) => api.get(`/workers/${workerId}/days/${date}`, { schema: ResultView, signal }),
+    queryFn: ({ signal }) =>
+      api.get(`/workers/${workerId}/days/${date}`, { schema: ResultView, signal }),
   });
 
 /** Any result ever computed; it never changes. */

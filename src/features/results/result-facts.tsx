@@ -10,7 +10,15 @@ import { useLocale } from "../../lib/i18n";
 import { paths } from "../../paths";
 
 /** In the margin of a working's head: which it is, by which versions, what was found, what stood before. */
-export function ResultFacts({ result, workingName, csv }: { result: ResultView; workingName: string; csv?: ReactNode }) {
+export function ResultFacts({
+  result,
+  workingName,
+  csv,
+}: {
+  result: ResultView;
+  workingName: string;
+  csv?: ReactNode;
+}) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const timeZone = Intl.DateTimeFormat().resolvedOptions().timeZone;
@@ -21,9 +29,16 @@ export function ResultFacts({ result, workingName, csv }: { result: ResultView; 
       <p>
         <b>{i18n.t("Working {name}", { name: workingName })}</b>
         <br />
-        {i18n.t("Method version {version}, computed {at}", { version: result.methodVersion, at: at(result.computedAt) })}
+        {i18n.t("Method version {version}, computed {at}", {
+          version: result.methodVersion,
+          at: at(result.computedAt),
+        })}
         <br />
-        {ruleSet && i18n.t("{title}, rule set version {version}", { title: ruleSet.citation, version: ruleSet.version })}
+        {ruleSet &&
+          i18n.t("{title}, rule set version {version}", {
+            title: ruleSet.citation,
+            version: ruleSet.version,
+          })}
       </p>
       <p className="note-links no-print">
         <TextButton onClick={() => window.print()}>{i18n.t("Print")}</TextButton>
@@ -31,8 +46,16 @@ export function ResultFacts({ result, workingName, csv }: { result: ResultView; 
       </p>
       {result.earlier.map((one) => (
         <p key={one.id} className="no-print">
-          <TextLink to={one.isCurrent ? paths.result(result.worker.id, result.date) : paths.storedResult(one.id)}>
-            {one.isCurrent ? i18n.t("The result that stands now") : i18n.t("Earlier result, {at}", { at: at(one.computedAt) })}
+          <TextLink
+            to={
+              one.isCurrent
+                ? paths.result(result.worker.id, result.date)
+                : paths.storedResult(one.id)
+            }
+          >
+            {one.isCurrent
+              ? i18n.t("The result that stands now")
+              : i18n.t("Earlier result, {at}", { at: at(one.computedAt) })}
           </TextLink>
         </p>
       ))}
@@ -42,14 +65,20 @@ export function ResultFacts({ result, workingName, csv }: { result: ResultView; 
           {result.findings.map((finding, index) => (
             <span key={finding.id}>
               {index > 0 && "; "}
-              <TextLink to={paths.finding(finding.id)}>{findingWord(i18n, finding.kind as FindingKind)}</TextLink>
+              <TextLink to={paths.finding(finding.id)}>
+                {findingWord(i18n, finding.kind as FindingKind)}
+              </TextLink>
               {`: ${findingStateWord(i18n, finding.state as FindingState).toLocaleLowerCase(locale)}`}
             </span>
           ))}
         </p>
       )}
       {result.input && (
-        <p>{i18n.t("The lines are judged apart. Action values count the noise without protection; a limit at the ear counts the protector; the protector itself is judged while worn, task by task.")}</p>
+        <p>
+          {i18n.t(
+            "The lines are judged apart. Action values count the noise without protection; a limit at the ear counts the protector; the protector itself is judged while worn, task by task.",
+          )}
+        </p>
       )}
     </aside>
   );

@@ -2,13 +2,25 @@ import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { useFieldArray } from "react-hook-form";
 import type { z } from "zod";
+import { formatShare } from "../../../shared/format/dose";
 import { formatDuration } from "../../../shared/format/duration";
 import { formatLimit } from "../../../shared/format/level";
-import { formatShare } from "../../../shared/format/dose";
 import { ShiftCorrection, ShiftView } from "../../../shared/schemas/shift";
 import { Button } from "../../components/button";
 import { ConflictDialog, type ConflictField } from "../../components/conflict-dialog";
-import { CheckField, DurationField, Form, FormActions, NumberField, SelectField, showIssuesOn, SubmitButton, TextAreaField, TimeField, useSchemaForm } from "../../components/form";
+import {
+  CheckField,
+  DurationField,
+  Form,
+  FormActions,
+  NumberField,
+  SelectField,
+  SubmitButton,
+  showIssuesOn,
+  TextAreaField,
+  TimeField,
+  useSchemaForm,
+} from "../../components/form";
 import { FormProblem } from "../../components/form-problem";
 import { TextButton } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
@@ -18,11 +30,29 @@ import { type Shift, useShiftSaved } from "./shift-queries";
 
 type Correction = z.output<typeof ShiftCorrection>;
 
-const bodyOf = ({ localStart, whichHour, lengthMin, unaccounted, tasks, note }: Shift): Correction => ({
-  localStart, whichHour, lengthMin, unaccounted, tasks, note, reason: "", confirmsWholeDay: false,
+const bodyOf = ({
+  localStart,
+  whichHour,
+  lengthMin,
+  unaccounted,
+  tasks,
+  note,
+}: Shift): Correction => ({
+  localStart,
+  whichHour,
+  lengthMin,
+  unaccounted,
+  tasks,
+  note,
+  reason: "",
+  confirmsWholeDay: false,
 });
 
-export function unaccountedWords(i18n: ReturnType<typeof useLingui>["i18n"], locale: ReturnType<typeof useLocale>, unaccounted: Shift["unaccounted"]): string {
+export function unaccountedWords(
+  i18n: ReturnType<typeof useLingui>["i18n"],
+  locale: ReturnType<typeof useLocale>,
+  unaccounted: Shift["unaccounted"],
+): string {
   switch (unaccounted.how) {
     case "unknown":
       return i18n.t("not known");
@@ -34,7 +64,15 @@ export function unaccountedWords(i18n: ReturnType<typeof useLingui>["i18n"], loc
 }
 
 /** The next revision of a shift, with its reason. */
-export function CorrectShift({ shift, siteId, onDone }: { shift: Shift; siteId: string; onDone: () => void }) {
+export function CorrectShift({
+  shift,
+  siteId,
+  onDone,
+}: {
+  shift: Shift;
+  siteId: string;
+  onDone: () => void;
+}) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const saved = useShiftSaved();
@@ -42,7 +80,9 @@ export function CorrectShift({ shift, siteId, onDone }: { shift: Shift; siteId: 
   const form = useSchemaForm(ShiftCorrection, { defaultValues: bodyOf(shift) });
   const rows = useFieldArray({ control: form.control, name: "tasks" });
   const nameOf = (id: string) =>
-    known.data?.rows.find((task) => task.id === id)?.name ?? shift.revisions.flatMap(({ tasks }) => tasks).find(({ taskId }) => taskId === id)?.taskName ?? "–";
+    known.data?.rows.find((task) => task.id === id)?.name ??
+    shift.revisions.flatMap(({ tasks }) => tasks).find(({ taskId }) => taskId === id)?.taskName ??
+    "–";
   const change = useRevisedSave<Correction, Shift>({
     path: () => `/shifts/${shift.shiftId}`,
     schema: ShiftView,
@@ -53,27 +93,51 @@ export function CorrectShift({ shift, siteId, onDone }: { shift: Shift; siteId: 
     onError: showIssuesOn(form, i18n),
   });
   const used = new Set((form.watch("tasks") ?? []).map(({ taskId }) => taskId));
-  const free = (known.data?.rows ?? []).filter(({ id, isArchived }) => !isArchived && !used.has(id));
+  const free = (known.data?.rows ?? []).filter(
+    ({ id, isArchived }) => !isArchived && !used.has(id),
+  );
   const how = form.watch("unaccounted.how");
   const lengthMin = form.watch("lengthMin");
-  const tasksWords = (tasks: Correction["tasks"]) => tasks.map(({ taskId, durationMin }) => `${nameOf(taskId)} ${formatDuration(durationMin, locale)}`).join(", ");
+  const tasksWords = (tasks: Correction["tasks"]) =>
+    tasks
+      .map(({ taskId, durationMin }) => `${nameOf(taskId)} ${formatDuration(durationMin, locale)}`)
+      .join(", ");
   const fields: ConflictField<Correction>[] = [
     { key: "localStart", label: i18n.t("Start"), show: ({ localStart }) => localStart },
-    { key: "lengthMin", label: i18n.t("Length"), show: (body) => formatDuration(body.lengthMin, locale) },
+    {
+      key: "lengthMin",
+      label: i18n.t("Length"),
+      show: (body) => formatDuration(body.lengthMin, locale),
+    },
     {
       key: "tasks",
       label: i18n.t("Tasks"),
       show: ({ tasks }) => tasksWords(tasks),
     },
-    { key: "unaccounted", label: i18n.t("Time not accounted for"), show: ({ unaccounted }) => unaccountedWords(i18n, locale, unaccounted ?? { how: "unknown" }) },
+    {
+      key: "unaccounted",
+      label: i18n.t("Time not accounted for"),
+      show: ({ unaccounted }) => unaccountedWords(i18n, locale, unaccounted ?? { how: "unknown" }),
+    },
     { key: "note", label: i18n.t("Note"), show: ({ note }) => note ?? "–" },
   ];
-  const sumError = form.formState.errors.tasks?.root?.message ?? (form.formState.errors.tasks as { message?: string } | undefined)?.message;
+  const sumError =
+    form.formState.errors.tasks?.root?.message ??
+    (form.formState.errors.tasks as { message?: string } | undefined)?.message;
   return (
     <>
-      <Form aria-label={i18n.t("Correct this shift")} onSubmit={form.handleSubmit((body) => change.save(body, shift.revision))}>
+      <Form
+        aria-label={i18n.t("Correct this shift")}
+        onSubmit={form.handleSubmit((body) => change.save(body, shift.revision))}
+      >
         <TimeField form={form} name="localStart" label={i18n.t("Start")} />
-        <DurationField form={form} name="lengthMin" label={i18n.t("Length")} unit="min" note={i18n.t("450, 7:30 or 7.5h.")} />
+        <DurationField
+          form={form}
+          name="lengthMin"
+          label={i18n.t("Length")}
+          unit="min"
+          note={i18n.t("450, 7:30 or 7.5h.")}
+        />
         <table className="task-rows">
           <caption className="sr-only">{i18n.t("Tasks of the shift")}</caption>
           <thead>
@@ -81,7 +145,9 @@ export function CorrectShift({ shift, siteId, onDone }: { shift: Shift; siteId: 
               <th scope="col">{i18n.t("Task")}</th>
               <th scope="col">{i18n.t("Minutes")}</th>
               <th scope="col">{i18n.t("Protector worn, %")}</th>
-              <td />
+              <th scope="col">
+                <span className="sr-only">{i18n.t("Change")}</span>
+              </th>
             </tr>
           </thead>
           <tbody>
@@ -89,10 +155,19 @@ export function CorrectShift({ shift, siteId, onDone }: { shift: Shift; siteId: 
               <tr key={row.id}>
                 <th scope="row">{nameOf(row.taskId)}</th>
                 <td>
-                  <DurationField form={form} name={`tasks.${index}.durationMin`} label={i18n.t("Minutes in {task}", { task: nameOf(row.taskId) })} />
+                  <DurationField
+                    form={form}
+                    name={`tasks.${index}.durationMin`}
+                    label={i18n.t("Minutes in {task}", { task: nameOf(row.taskId) })}
+                  />
                 </td>
                 <td>
-                  <NumberField form={form} name={`tasks.${index}.wornPct`} label={i18n.t("Worn in {task}, %", { task: nameOf(row.taskId) })} isOptional />
+                  <NumberField
+                    form={form}
+                    name={`tasks.${index}.wornPct`}
+                    label={i18n.t("Worn in {task}, %", { task: nameOf(row.taskId) })}
+                    isOptional
+                  />
                 </td>
                 <td>
                   <TextButton onClick={() => rows.remove(index)}>
@@ -114,22 +189,30 @@ export function CorrectShift({ shift, siteId, onDone }: { shift: Shift; siteId: 
             <label className="field-label" htmlFor="add-task">
               {i18n.t("Add a task")}
             </label>
-            <select
-              id="add-task"
-              className="input"
-              value=""
-              onChange={(event) => {
-                const taskId = event.target.value;
-                if (taskId) rows.append({ taskId, durationMin: null as unknown as number, wornPct: null, wornIsShiftWide: false });
-              }}
-            >
-              <option value="">{i18n.t("Choose one")}</option>
-              {free.map(({ id, name }) => (
-                <option key={id} value={id}>
-                  {name}
-                </option>
-              ))}
-            </select>
+            <div className="field-line">
+              <select
+                id="add-task"
+                className="input"
+                value=""
+                onChange={(event) => {
+                  const taskId = event.target.value;
+                  if (taskId)
+                    rows.append({
+                      taskId,
+                      durationMin: null as unknown as number,
+                      wornPct: null,
+                      wornIsShiftWide: false,
+                    });
+                }}
+              >
+                <option value="">{i18n.t("Choose one")}</option>
+                {free.map(({ id, name }) => (
+                  <option key={id} value={id}>
+                    {name}
+                  </option>
+                ))}
+              </select>
+            </div>
           </div>
         )}
         <SelectField
@@ -142,13 +225,29 @@ export function CorrectShift({ shift, siteId, onDone }: { shift: Shift; siteId: 
             { value: "quiet", label: i18n.t("quiet") },
           ]}
         />
-        {how === "quiet" && <NumberField form={form} name="unaccounted.levelDb" label={i18n.t("Level there")} unit="dB(A)" />}
-        {lengthMin === 1440 && <CheckField form={form} name="confirmsWholeDay" label={i18n.t("24 hours")} text={i18n.t("Yes, the shift was exactly 24 hours long")} />}
+        {how === "quiet" && (
+          <NumberField
+            form={form}
+            name="unaccounted.levelDb"
+            label={i18n.t("Level there")}
+            unit="dB(A)"
+          />
+        )}
+        {lengthMin === 1440 && (
+          <CheckField
+            form={form}
+            name="confirmsWholeDay"
+            label={i18n.t("24 hours")}
+            text={i18n.t("Yes, the shift was exactly 24 hours long")}
+          />
+        )}
         <TextAreaField form={form} name="note" label={i18n.t("Note")} rows={2} isOptional />
         <TextAreaField form={form} name="reason" label={i18n.t("Why it is corrected")} rows={2} />
         <FormProblem error={change.error} />
         <FormActions>
-          <SubmitButton isBusy={change.isSaving}>{i18n.t("Save revision {number}", { number: shift.revision + 1 })}</SubmitButton>
+          <SubmitButton isBusy={change.isSaving}>
+            {i18n.t("Save revision {number}", { number: shift.revision + 1 })}
+          </SubmitButton>
           <Button onClick={onDone}>{i18n.t("Leave as it was")}</Button>
         </FormActions>
       </Form>
@@ -172,7 +271,13 @@ export function CorrectShift({ shift, siteId, onDone }: { shift: Shift; siteId: 
 }
 
 /** "Run-up 130 min, worn 100 %" */
-export function taskWords(i18n: ReturnType<typeof useLingui>["i18n"], locale: ReturnType<typeof useLocale>, task: Shift["revisions"][number]["tasks"][number]): string {
+export function taskWords(
+  i18n: ReturnType<typeof useLingui>["i18n"],
+  locale: ReturnType<typeof useLocale>,
+  task: Shift["revisions"][number]["tasks"][number],
+): string {
   const time = `${task.taskName} ${formatDuration(task.durationMin, locale)}`;
-  return task.wornPct === null ? time : i18n.t("{time}, worn {share}", { time, share: formatShare(task.wornPct, locale) });
+  return task.wornPct === null
+    ? time
+    : i18n.t("{time}, worn {share}", { time, share: formatShare(task.wornPct, locale) });
 }

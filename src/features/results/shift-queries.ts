@@ -17,6 +17,7 @@ export function useShiftSaved() {
   return (shift: Shift) => {
     client.setQueryData(shiftQuery(shift.shiftId).queryKey, shift);
     void client.invalidateQueries({ queryKey: ["results", "day"] });
-    for (const name of ["workers", "findings", "waiting"]) void client.invalidateQueries({ queryKey: [name] });
+    for (const name of ["workers", "findings", "waiting"])
+      void client.invalidateQueries({ queryKey: [name] });
   };
 }

@@ -1,21 +1,50 @@
 import { parse } from "csv-parse/sync";
 import { expect, test } from "vitest";
-import { buildWorking } from "../../../shared/acoustics/working";
 import type { DayInput } from "../../../shared/acoustics/types";
+import { buildWorking } from "../../../shared/acoustics/working";
 import { ruleSetVersion } from "../../../shared/rule-sets";
 import { testI18n } from "../../lib/test-i18n";
 import { workingCsv } from "./working-csv";
 
 const level = (levelDb: number) => ({
-  revisionId: null, metric: { kind: "steady" as const }, levelDb, lcMinusLaDb: null, octaveBandsDb: null, lasMaxDb: null, peak: null, samplesDb: [], instrument: null, grade: "task-level" as const,
+  revisionId: null,
+  metric: { kind: "steady" as const },
+  levelDb,
+  lcMinusLaDb: null,
+  octaveBandsDb: null,
+  lasMaxDb: null,
+  peak: null,
+  samplesDb: [],
+  instrument: null,
+  grade: "task-level" as const,
 });
 const task = (id: string, name: string, levelDb: number, durationMin: number) => ({
-  id, taskId: id, name, durationMin, level: level(levelDb), zone: "none" as const, protection: null, wornPct: null, wornIsShiftWide: false,
+  id,
+  taskId: id,
+  name,
+  durationMin,
+  level: level(levelDb),
+  zone: "none" as const,
+  protection: null,
+  wornPct: null,
+  wornIsShiftWide: false,
 });
 const input: DayInput = {
-  workerId: "w", date: "2026-11-30",
-  shifts: [{ id: "s", revisionId: "r", lengthMin: 480, tasks: [task("a", '=HYPERLINK("x")', 100, 120), task("b", "Control room", 70, 360)], unaccounted: { how: "unknown" }, readings: [] }],
-  site: { wearFromDb: 85, creditsActivePart: false, usesUncertainty: false }, personalTargetDb: null, mustWear: false,
+  workerId: "w",
+  date: "2026-11-30",
+  shifts: [
+    {
+      id: "s",
+      revisionId: "r",
+      lengthMin: 480,
+      tasks: [task("a", '=HYPERLINK("x")', 100, 120), task("b", "Control room", 70, 360)],
+      unaccounted: { how: "unknown" },
+      readings: [],
+    },
+  ],
+  site: { wearFromDb: 85, creditsActivePart: false, usesUncertainty: false },
+  personalTargetDb: null,
+  mustWear: false,
 };
 
 function lines(): string[][] {
@@ -24,7 +53,9 @@ function lines(): string[][] {
 }
 
 test("numbers stand unrounded with their unit: LEX,8h = 10 lg(2/8·10^10 + 6/8·10^7), by hand 93.9924 dB", () => {
-  const found = lines().find(([, step, title, part]) => step === "0" && title === "Without protection" && part === "level");
+  const found = lines().find(
+    ([, step, title, part]) => step === "0" && title === "Without protection" && part === "level",
+  );
   expect(Number(found?.[6])).toBeCloseTo(93.9924, 4);
   expect(String(found?.[6]).length).toBeGreaterThan(8);
   expect(found?.[7]).toBe("dB");

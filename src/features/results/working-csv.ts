@@ -1,12 +1,13 @@
 import type { I18n } from "@lingui/core";
+import { SOURCES } from "../../../shared/acoustics/sources";
 import type { Working, WorkingValue } from "../../../shared/acoustics/working";
 import type { Locale } from "../../../shared/i18n/index";
-import { SOURCES } from "../../../shared/acoustics/sources";
 import { mathText, workingText, workingValueText } from "./working-words";
 
 /** A text that a spreadsheet would take for a formula is marked as text; numbers never come here. */
 const guard = (text: string): string => (/^[=+\-@\t\r]/.test(text) ? `'${text}` : text);
-const field = (text: string): string => (/[",\r\n]/.test(text) ? `"${text.replaceAll('"', '""')}"` : text);
+const field = (text: string): string =>
+  /[",\r\n]/.test(text) ? `"${text.replaceAll('"', '""')}"` : text;
 
 interface Stored {
   number: number;
@@ -36,13 +37,32 @@ function stored(value: WorkingValue): Stored | null {
  * The working as CSV (RFC 4180): a line for each cell and equation, numbers unrounded with a decimal point, and at the end
  * the count of its lines.
  */
-export function workingCsv(i18n: I18n, locale: Locale, working: Working, workingId: string): string {
-  const lines: string[][] = [["working", "step", "title", "part", "row", "column", "value", "unit"]];
-  const add = (step: string, title: string, part: string, row: string, column: string, value: WorkingValue | null) => {
+export function workingCsv(
+  i18n: I18n,
+  locale: Locale,
+  working: Working,
+  workingId: string,
+): string {
+  const lines: string[][] = [
+    ["working", "step", "title", "part", "row", "column", "value", "unit"],
+  ];
+  const add = (
+    step: string,
+    title: string,
+    part: string,
+    row: string,
+    column: string,
+    value: WorkingValue | null,
+  ) => {
     if (value === null) return;
     const number = stored(value);
     lines.push([
-      workingId, step, guard(title), part, guard(row), guard(column),
+      workingId,
+      step,
+      guard(title),
+      part,
+      guard(row),
+      guard(column),
       number ? String(number.number) : guard(workingValueText(i18n, locale, value)),
       number?.unit ?? "",
     ]);
@@ -63,7 +83,12 @@ export function workingCsv(i18n: I18n, locale: Locale, working: Working, working
     const title = workingText(i18n, locale, step.title);
     for (const table of step.tables) {
       const heads = table.columns.map((column) =>
-        [column.title && workingText(i18n, locale, column.title), column.symbol && mathText(i18n, locale, column.symbol)].filter(Boolean).join(" "),
+        [
+          column.title && workingText(i18n, locale, column.title),
+          column.symbol && mathText(i18n, locale, column.symbol),
+        ]
+          .filter(Boolean)
+          .join(" "),
       );
       for (const row of table.rows) {
         const [first] = row.cells;
@@ -73,11 +98,26 @@ export function workingCsv(i18n: I18n, locale: Locale, working: Working, working
         });
       }
     }
-    for (const equation of step.equations) add(number, title, `equation ${equation.number}`, "", "", text(mathText(i18n, locale, equation.parts)));
-    for (const share of step.shares) add(number, title, "share", workingText(i18n, locale, share.label), "", { kind: "share", pct: share.pct });
+    for (const equation of step.equations)
+      add(
+        number,
+        title,
+        `equation ${equation.number}`,
+        "",
+        "",
+        text(mathText(i18n, locale, equation.parts)),
+      );
+    for (const share of step.shares)
+      add(number, title, "share", workingText(i18n, locale, share.label), "", {
+        kind: "share",
+        pct: share.pct,
+      });
     for (const note of step.notes) add(number, title, "note", "", "", { kind: "text", text: note });
     for (const source of step.sources) {
-      const cited = source.id === null ? source.clause : `${SOURCES[source.id].title}, ${SOURCES[source.id].edition}, ${source.clause}`;
+      const cited =
+        source.id === null
+          ? source.clause
+          : `${SOURCES[source.id].title}, ${SOURCES[source.id].edition}, ${source.clause}`;
       add(number, title, "source", "", "", text(cited));
     }
   }

@@ -31,14 +31,25 @@ export function WorkingOf({
   const working = useMemo(() => {
     const governing = ruleSetVersion(result.governing.key, result.governing.version);
     if (!governing) return null;
-    const comparison = result.comparison.flatMap(({ key, version }) => ruleSetVersion(key, version) ?? []);
+    const comparison = result.comparison.flatMap(
+      ({ key, version }) => ruleSetVersion(key, version) ?? [],
+    );
     return buildWorking(input, governing, comparison, evaluation);
   }, [result, input, evaluation]);
-  if (!working) return <Failed>{i18n.t("This version of the program does not know the rule set of this result. Its levels stand as they are.")}</Failed>;
+  if (!working)
+    return (
+      <Failed>
+        {i18n.t(
+          "This version of the program does not know the rule set of this result. Its levels stand as they are.",
+        )}
+      </Failed>
+    );
 
   function save() {
     if (!working) return;
-    const file = new Blob(["\uFEFF", workingCsv(i18n, locale, working, result.id)], { type: "text/csv;charset=utf-8" });
+    const file = new Blob(["\uFEFF", workingCsv(i18n, locale, working, result.id)], {
+      type: "text/csv;charset=utf-8",
+    });
     const link = document.createElement("a");
     link.href = URL.createObjectURL(file);
     link.download = `working-${workingName}.csv`;
@@ -53,7 +64,11 @@ export function WorkingOf({
           <WorkingLines working={working} />
           {strip}
         </div>
-        <ResultFacts result={result} workingName={workingName} csv={<TextButton onClick={save}>{i18n.t("CSV")}</TextButton>} />
+        <ResultFacts
+          result={result}
+          workingName={workingName}
+          csv={<TextButton onClick={save}>{i18n.t("CSV")}</TextButton>}
+        />
       </div>
       {working.steps.map((step) => (
         <WorkingStepView key={step.number} step={step}>
@@ -65,11 +80,21 @@ export function WorkingOf({
 }
 
 /** The records that a step rests on, as links to where they stand; those of one kind in one sentence. */
-function Records({ records, result, input }: { records: readonly WorkingRecord[]; result: ResultView; input: DayInput }) {
+function Records({
+  records,
+  result,
+  input,
+}: {
+  records: readonly WorkingRecord[];
+  result: ResultView;
+  input: DayInput;
+}) {
   const { i18n } = useLingui();
   const of = (kind: WorkingRecord["kind"]) => records.filter((record) => record.kind === kind);
   const tasks = input.shifts.flatMap((shift) => shift.tasks);
-  const models = tasks.flatMap(({ protection }) => (protection ? [protection.inner, protection.outer] : []));
+  const models = tasks.flatMap(({ protection }) =>
+    protection ? [protection.inner, protection.outer] : [],
+  );
   const levels = of("level-revision").flatMap(({ id }) => {
     const task = tasks.find(({ level }) => level?.revisionId === id);
     const source = result.sources[id];
@@ -90,7 +115,10 @@ function Records({ records, result, input }: { records: readonly WorkingRecord[]
           <p key={id}>
             {i18n.t("Minutes:")}{" "}
             <TextLink to={paths.shift(shift.id)}>
-              {i18n.t("shift {start}, revision {revision}", { start: shift.localStart, revision: shift.revision })}
+              {i18n.t("shift {start}, revision {revision}", {
+                start: shift.localStart,
+                revision: shift.revision,
+              })}
             </TextLink>
             {shift.authorName && ` ${i18n.t("by {name}", { name: shift.authorName })}`}
             {shift.reason && `, “${shift.reason}”`}.
@@ -117,7 +145,11 @@ function Records({ records, result, input }: { records: readonly WorkingRecord[]
 }
 
 /** Several records, and after them the note that they share. */
-function SourceLinks({ sources }: { sources: readonly { id: string; to: string; label: string; note: string | null }[] }) {
+function SourceLinks({
+  sources,
+}: {
+  sources: readonly { id: string; to: string; label: string; note: string | null }[];
+}) {
   const notes = [...new Set(sources.flatMap(({ note }) => note ?? []))];
   return (
     <>

@@ -1,20 +1,48 @@
 import { useLingui } from "@lingui/react";
-import { Fragment, type ReactNode } from "react";
+import type { ReactNode } from "react";
 import { SOURCES } from "../../../shared/acoustics/sources";
-import type { MathPart, Working, WorkingStep, WorkingTable, WorkingValue } from "../../../shared/acoustics/working";
+import type {
+  MathPart,
+  Working,
+  WorkingStep,
+  WorkingTable,
+  WorkingValue,
+} from "../../../shared/acoustics/working";
 import { scientificParts } from "../../../shared/format/figures";
-import { Equation, Fraction, Power, PutIn, Relation, Result, Sum, Sym } from "../../components/equation";
+import {
+  Equation,
+  Fraction,
+  Power,
+  PutIn,
+  Relation,
+  Result,
+  Sum,
+  Sym,
+} from "../../components/equation";
 import { ShareBar } from "../../components/share-bar";
 import { Verdict } from "../../components/verdict";
 import { useLocale } from "../../lib/i18n";
 import { isLimitAt, limitText, mathText, workingText, workingValueText } from "./working-words";
 
-const NUMERIC: ReadonlySet<WorkingValue["kind"]> = new Set(["level", "difference", "minutes", "share", "dose", "scientific", "number"]);
+const NUMERIC: ReadonlySet<WorkingValue["kind"]> = new Set([
+  "level",
+  "difference",
+  "minutes",
+  "share",
+  "dose",
+  "scientific",
+  "number",
+]);
 
 function Value({ value }: { value: WorkingValue }) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  if (value.kind === "verdict") return <Verdict verdict={value.verdict} isQuiet>{workingValueText(i18n, locale, value)}</Verdict>;
+  if (value.kind === "verdict")
+    return (
+      <Verdict verdict={value.verdict} isQuiet>
+        {workingValueText(i18n, locale, value)}
+      </Verdict>
+    );
   if (value.kind === "math")
     return (
       <span className="test-line">
@@ -31,8 +59,17 @@ function Value({ value }: { value: WorkingValue }) {
     );
   }
   if (value.kind === "protector-word")
-    return <span className={value.word === "too-little" || value.word === "too-much" ? "is-fault" : undefined}>{workingValueText(i18n, locale, value)}</span>;
-  if (value.kind === "reason") return <span className="not-assessed">{workingValueText(i18n, locale, value)}</span>;
+    return (
+      <span
+        className={
+          value.word === "too-little" || value.word === "too-much" ? "is-fault" : undefined
+        }
+      >
+        {workingValueText(i18n, locale, value)}
+      </span>
+    );
+  if (value.kind === "reason")
+    return <span className="not-assessed">{workingValueText(i18n, locale, value)}</span>;
   if (value.kind === "list" && value.values.some(({ kind }) => kind === "text"))
     return (
       <ul className="duties">
@@ -47,51 +84,67 @@ function Value({ value }: { value: WorkingValue }) {
 const RELATIONS = /^(=|≤|<|>|≥|≈)$/;
 
 function MathLine({ parts }: { parts: readonly MathPart[] }): ReactNode {
+  return parts.map((part, index) => (
+    // biome-ignore lint/suspicious/noArrayIndexKey: the parts of an equation have no identity but their place
+    <MathPiece key={index} part={part} isLimit={isLimitAt(parts, index)} />
+  ));
+}
+
+function MathPiece({ part, isLimit }: { part: MathPart; isLimit: boolean }) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  return parts.map((part, index) => {
-    // The parts of an equation have no identity but their place.
-    const key = `${part.kind} ${index}`;
-    switch (part.kind) {
-      case "sign":
-        if (RELATIONS.test(part.text)) return <Relation key={key}>{part.text}</Relation>;
-        return <Fragment key={key}>{part.text === "," ? ", " : ` ${part.text} `}</Fragment>;
-      case "symbol":
-        return (
-          <Sym key={key} sub={part.sub}>
-            {part.base}
-            {part.isAtEar ? "′" : ""}
-          </Sym>
-        );
-      case "value":
-        return part.isResult ? (
-          <Result key={key}>
-            <Value value={part.value} />
-            {part.value.kind === "level" || part.value.kind === "difference" ? " dB" : ""}
-          </Result>
-        ) : (
-          <PutIn key={key}>{isLimitAt(parts, index) ? limitText(i18n, locale, part.value) : <Value value={part.value} />}</PutIn>
-        );
-      case "sum":
-        return <Sum key={key} />;
-      case "fraction":
-        return <Fraction key={key} over={<MathLine parts={part.over} />} under={<MathLine parts={part.under} />} />;
-      case "power":
-        return (
-          <Power key={key} base={part.base}>
-            <MathLine parts={part.exponent} />
-          </Power>
-        );
-    }
-  });
+  switch (part.kind) {
+    case "sign":
+      if (RELATIONS.test(part.text)) return <Relation>{part.text}</Relation>;
+      return part.text === "," ? ", " : ` ${part.text} `;
+    case "symbol":
+      return (
+        <Sym sub={part.sub}>
+          {part.base}
+          {part.isAtEar ? "′" : ""}
+        </Sym>
+      );
+    case "value":
+      return part.isResult ? (
+        <Result>
+          <Value value={part.value} />
+          {part.value.kind === "level" || part.value.kind === "difference" ? " dB" : ""}
+        </Result>
+      ) : (
+        <PutIn>
+          {isLimit ? limitText(i18n, locale, part.value) : <Value value={part.value} />}
+        </PutIn>
+      );
+    case "sum":
+      return <Sum />;
+    case "fraction":
+      return (
+        <Fraction over={<MathLine parts={part.over} />} under={<MathLine parts={part.under} />} />
+      );
+    case "power":
+      return (
+        <Power base={part.base}>
+          <MathLine parts={part.exponent} />
+        </Power>
+      );
+  }
+}
+
+function Cell({ value, isBlank }: { value: WorkingValue | null; isBlank: boolean }) {
+  if (value !== null) return <Value value={value} />;
+  return isBlank ? null : "–";
 }
 
 function StepTable({ table, caption }: { table: WorkingTable; caption: string }) {
   const { i18n } = useLingui();
   const locale = useLocale();
   return (
-    // biome-ignore lint/a11y/noNoninteractiveTabindex: a table wider than its frame is scrolled by keys
-    <div className="working-scroll" role="region" aria-label={i18n.t("Table: {title}", { title: caption })} tabIndex={0}>
+    <section
+      className="working-scroll"
+      aria-label={i18n.t("Table: {title}", { title: caption })}
+      // biome-ignore lint/a11y/noNoninteractiveTabindex: a table wider than its frame is scrolled by keys
+      tabIndex={0}
+    >
       <table className="working-table">
         <caption className="sr-only">{caption}</caption>
         <thead>
@@ -105,27 +158,37 @@ function StepTable({ table, caption }: { table: WorkingTable; caption: string })
                     <MathLine parts={column.symbol} />
                   </>
                 )}
-                {!column.title && !column.symbol && <span className="sr-only">{i18n.t("Remark")}</span>}
+                {!column.title && !column.symbol && (
+                  <span className="sr-only">{i18n.t("Remark")}</span>
+                )}
               </th>
             ))}
           </tr>
         </thead>
         <tbody>
           {table.rows.map((row) => (
-            <tr key={row.id} className={row.isTotal ? "is-total" : row.isEmphasized ? "is-emphasized" : undefined}>
+            <tr
+              key={row.id}
+              className={row.isTotal ? "is-total" : row.isEmphasized ? "is-emphasized" : undefined}
+            >
               {row.cells.map((cell, index) => {
                 const column = table.columns[index];
                 const key = column?.id ?? index;
-                const isNumber = cell !== null && (NUMERIC.has(cell.kind) || cell.kind === "list") && column?.isNumeric;
-                const className = column?.isNumeric ? `is-right${isNumber || cell === null ? " mono" : ""}` : undefined;
-                const content = cell === null ? (column?.isNumeric && !row.isTotal ? "–" : "") : <Value value={cell} />;
+                const isNumber =
+                  cell !== null &&
+                  (NUMERIC.has(cell.kind) || cell.kind === "list") &&
+                  column?.isNumeric;
+                const className = column?.isNumeric
+                  ? `is-right${isNumber || cell === null ? " mono" : ""}`
+                  : undefined;
+                const isBlank = !column?.isNumeric || row.isTotal;
                 return index === 0 ? (
                   <th key={key} scope="row">
-                    {content}
+                    <Cell value={cell} isBlank={isBlank} />
                   </th>
                 ) : (
                   <td key={key} className={className}>
-                    {content}
+                    <Cell value={cell} isBlank={isBlank} />
                   </td>
                 );
               })}
@@ -133,7 +196,7 @@ function StepTable({ table, caption }: { table: WorkingTable; caption: string })
           ))}
         </tbody>
       </table>
-    </div>
+    </section>
   );
 }
 
@@ -152,8 +215,14 @@ export function WorkingLines({ working }: { working: Working }) {
             <tr key={line.id} className={isQuiet ? "is-quiet" : undefined}>
               <th scope="row">{workingText(i18n, locale, line.title)}</th>
               <td className="working-lines-level">
-                <span className="mono">{line.level ? workingValueText(i18n, locale, line.level) : "–"}</span>
-                {line.level && line.uncertainty && <span className="figure-u">±{workingValueText(i18n, locale, line.uncertainty)}</span>}
+                <span className="mono">
+                  {line.level ? workingValueText(i18n, locale, line.level) : "–"}
+                </span>
+                {line.level && line.uncertainty && (
+                  <span className="figure-u">
+                    ±{workingValueText(i18n, locale, line.uncertainty)}
+                  </span>
+                )}
               </td>
               <td>
                 {outcome?.kind === "verdict" ? (
@@ -161,10 +230,16 @@ export function WorkingLines({ working }: { working: Working }) {
                     {workingValueText(i18n, locale, outcome)}
                   </Verdict>
                 ) : (
-                  outcome && <b><Value value={outcome} /></b>
+                  outcome && (
+                    <b>
+                      <Value value={outcome} />
+                    </b>
+                  )
                 )}
               </td>
-              <td className="working-lines-remark">{line.remark && workingText(i18n, locale, line.remark)}</td>
+              <td className="working-lines-remark">
+                {line.remark && workingText(i18n, locale, line.remark)}
+              </td>
             </tr>
           );
         })}
@@ -179,9 +254,19 @@ export function WorkingStepView({ step, children }: { step: WorkingStep; childre
   const locale = useLocale();
   const title = workingText(i18n, locale, step.title);
   const id = `step-${step.number}`;
-  const tables = step.tables.map((table) => <StepTable key={table.columns.map((column) => column.id).join(" ")} table={table} caption={title} />);
+  const tables = step.tables.map((table) => (
+    <StepTable
+      key={table.columns.map((column) => column.id).join(" ")}
+      table={table}
+      caption={title}
+    />
+  ));
   const equations = step.equations.map((equation) => (
-    <Equation key={equation.number} number={equation.number} spoken={mathText(i18n, locale, equation.parts)}>
+    <Equation
+      key={equation.number}
+      number={equation.number}
+      spoken={mathText(i18n, locale, equation.parts)}
+    >
       <MathLine parts={equation.parts} />
     </Equation>
   ));
@@ -200,7 +285,10 @@ export function WorkingStepView({ step, children }: { step: WorkingStep; childre
               <ShareBar
                 kind="uncertainty"
                 lead={i18n.t("Share of u²")}
-                shares={step.shares.map(({ label, pct }) => ({ label: workingText(i18n, locale, label).toLocaleLowerCase(locale), sharePct: pct }))}
+                shares={step.shares.map(({ label, pct }) => ({
+                  label: workingText(i18n, locale, label).toLocaleLowerCase(locale),
+                  sharePct: pct,
+                }))}
               />
               {tables}
             </>
@@ -217,7 +305,10 @@ export function WorkingStepView({ step, children }: { step: WorkingStep; childre
           ))}
         </div>
       </div>
-      <aside className="working-margin" aria-label={i18n.t("What step {number} rests on", { number: step.number })}>
+      <aside
+        className="working-margin"
+        aria-label={i18n.t("What step {number} rests on", { number: step.number })}
+      >
         {step.sources.length > 0 && (
           <p>
             <b>{i18n.t("Source.")}</b>{" "}
@@ -226,7 +317,9 @@ export function WorkingStepView({ step, children }: { step: WorkingStep; childre
                 if (sourceId === null) return clause;
                 const source = SOURCES[sourceId];
                 const cited = [source.title, source.edition, clause].filter(Boolean).join(", ");
-                return source.status === "from-memory" ? i18n.t("{cited} (clause from memory)", { cited }) : cited;
+                return source.status === "from-memory"
+                  ? i18n.t("{cited} (clause from memory)", { cited })
+                  : cited;
               })
               .filter(Boolean)
               .join("; ")}

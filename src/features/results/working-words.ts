@@ -29,7 +29,14 @@ export function methodText(i18n: I18n, method: AttenuationMethod): string {
 }
 
 /** Values of a message that are a rule's own, not computed: as short as the rule prints them. */
-const LIMIT_NAMES: ReadonlySet<string> = new Set(["value", "action", "five", "ten", "fifteen", "target"]);
+const LIMIT_NAMES: ReadonlySet<string> = new Set([
+  "value",
+  "action",
+  "five",
+  "ten",
+  "fifteen",
+  "target",
+]);
 const COMPARATORS: ReadonlySet<string> = new Set([">", "≥", "<", "≤"]);
 
 export const limitText = (i18n: I18n, locale: Locale, value: WorkingValue): string =>
@@ -46,16 +53,29 @@ export function workingText(i18n: I18n, locale: Locale, text: WorkingText): stri
   const values = Object.fromEntries(
     Object.entries(text.values ?? {}).map(([name, value]) => [
       name,
-      LIMIT_NAMES.has(name) ? limitText(i18n, locale, value) : workingValueText(i18n, locale, value),
+      LIMIT_NAMES.has(name)
+        ? limitText(i18n, locale, value)
+        : workingValueText(i18n, locale, value),
     ]),
   );
   return i18n._(text.id, values);
 }
 
 const SUPERSCRIPTS: Readonly<Record<string, string>> = {
-  "-": "⁻", "0": "⁰", "1": "¹", "2": "²", "3": "³", "4": "⁴", "5": "⁵", "6": "⁶", "7": "⁷", "8": "⁸", "9": "⁹",
+  "-": "⁻",
+  "0": "⁰",
+  "1": "¹",
+  "2": "²",
+  "3": "³",
+  "4": "⁴",
+  "5": "⁵",
+  "6": "⁶",
+  "7": "⁷",
+  "8": "⁸",
+  "9": "⁹",
 };
-const raised = (exponent: number): string => [...String(exponent)].map((sign) => SUPERSCRIPTS[sign] ?? sign).join("");
+const raised = (exponent: number): string =>
+  [...String(exponent)].map((sign) => SUPERSCRIPTS[sign] ?? sign).join("");
 
 /** A number or word of the working, rounded by its kind as a reader sees it. */
 export function workingValueText(i18n: I18n, locale: Locale, value: WorkingValue): string {
@@ -78,7 +98,9 @@ export function workingValueText(i18n: I18n, locale: Locale, value: WorkingValue
       return formatFigures(value.number, locale);
     case "verdict": {
       const word = verdictWord(i18n, value.verdict);
-      return value.verdict === "over" && value.isClear ? i18n.t("{verdict}, clearly", { verdict: word }) : word;
+      return value.verdict === "over" && value.isClear
+        ? i18n.t("{verdict}, clearly", { verdict: word })
+        : word;
     }
     case "protector-word":
       return protectorWordText(i18n, value.word);
@@ -102,22 +124,26 @@ export function workingValueText(i18n: I18n, locale: Locale, value: WorkingValue
 /** An equation as one line of text: what is read out, and what stands in the CSV. */
 export function mathText(i18n: I18n, locale: Locale, parts: readonly MathPart[]): string {
   return parts
-    .map((part, index): string => {
-      switch (part.kind) {
-        case "sign":
-          return part.text;
-        case "symbol":
-          return `${part.base}${part.isAtEar ? "′" : ""}${part.sub ? ` ${part.sub}` : ""}`;
-        case "value":
-          return isLimitAt(parts, index) ? limitText(i18n, locale, part.value) : workingValueText(i18n, locale, part.value);
-        case "sum":
-          return "Σ";
-        case "fraction":
-          return `${mathText(i18n, locale, part.over)} / ${mathText(i18n, locale, part.under)}`;
-        case "power":
-          return `${part.base}^(${mathText(i18n, locale, part.exponent)})`;
-      }
-    })
+    .map((part, index) => partText(i18n, locale, part, isLimitAt(parts, index)))
     .join(" ")
     .replaceAll(" ,", ",");
+}
+
+function partText(i18n: I18n, locale: Locale, part: MathPart, isLimit: boolean): string {
+  switch (part.kind) {
+    case "sign":
+      return part.text;
+    case "symbol":
+      return `${part.base}${part.isAtEar ? "′" : ""}${part.sub ? ` ${part.sub}` : ""}`;
+    case "value":
+      return isLimit
+        ? limitText(i18n, locale, part.value)
+        : workingValueText(i18n, locale, part.value);
+    case "sum":
+      return "Σ";
+    case "fraction":
+      return `${mathText(i18n, locale, part.over)} / ${mathText(i18n, locale, part.under)}`;
+    case "power":
+      return `${part.base}^(${mathText(i18n, locale, part.exponent)})`;
+  }
 }

@@ -1,4 +1,9 @@
-import { infiniteQueryOptions, queryOptions, useMutation, useQueryClient } from "@tanstack/react-query";
+import {
+  infiniteQueryOptions,
+  queryOptions,
+  useMutation,
+  useQueryClient,
+} from "@tanstack/react-query";
 import { type RunInput, RunPage, RunView } from "../../../shared/schemas/run";
 import { api } from "../../lib/api";
 
@@ -13,7 +18,8 @@ export const runQueries = {
   list: (filter: RunListFilter) =>
     infiniteQueryOptions({
       queryKey: [...runQueries.all, "list", filter],
-      queryFn: ({ pageParam, signal }) => api.get("/runs", { query: { ...filter, cursor: pageParam }, schema: RunPage, signal }),
+      queryFn: ({ pageParam, signal }) =>
+        api.get("/runs", { query: { ...filter, cursor: pageParam }, schema: RunPage, signal }),
       initialPageParam: undefined as string | undefined,
       getNextPageParam: ({ next }) => next ?? undefined,
     }),
@@ -29,14 +35,16 @@ export function useRunSaved() {
   const client = useQueryClient();
   return (run: RunView) => {
     client.setQueryData(runQueries.one(run.id).queryKey, run);
-    for (const name of ["runs", "results", "workers", "findings", "waiting"]) void client.invalidateQueries({ queryKey: [name] });
+    for (const name of ["runs", "results", "workers", "findings", "waiting"])
+      void client.invalidateQueries({ queryKey: [name] });
   };
 }
 
 export function useRecordRun() {
   const saved = useRunSaved();
   return useMutation({
-    mutationFn: ({ body, key }: { body: RunInput; key: string }) => api.post("/runs", { body, schema: RunView, idempotencyKey: key }),
+    mutationFn: ({ body, key }: { body: RunInput; key: string }) =>
+      api.post("/runs", { body, schema: RunView, idempotencyKey: key }),
     onSuccess: saved,
   });
 }

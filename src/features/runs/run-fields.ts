@@ -1,7 +1,12 @@
 import { z } from "zod";
 import { Reason } from "../../../shared/schemas/common";
 import { Settings, Weighting } from "../../../shared/schemas/evaluation";
-import { FIELD_CHECK_TOLERANCE_DB, RunCorrection, RunInput, type RunView } from "../../../shared/schemas/run";
+import {
+  FIELD_CHECK_TOLERANCE_DB,
+  RunCorrection,
+  RunInput,
+  type RunView,
+} from "../../../shared/schemas/run";
 
 const figure = z.number().nullable();
 
@@ -31,7 +36,8 @@ const Fields = z.object({
 });
 export type RunFormValues = z.infer<typeof Fields>;
 
-const orNull = (text: string | null): string | null => (text === null || text.trim() === "" ? null : text);
+const orNull = (text: string | null): string | null =>
+  text === null || text.trim() === "" ? null : text;
 
 function factsOf(values: RunFormValues) {
   return {
@@ -56,7 +62,11 @@ export const toRunInput = (values: RunFormValues) => ({
   shiftId: null,
 });
 
-export const toRunCorrection = (values: RunFormValues) => ({ ...factsOf(values), reason: values.reason ?? "", isVoid: false });
+export const toRunCorrection = (values: RunFormValues) => ({
+  ...factsOf(values),
+  reason: values.reason ?? "",
+  isVoid: false,
+});
 
 /** Where an issue of the server's shape stands in the form. */
 const fieldOf = (path: readonly PropertyKey[]): PropertyKey[] => {
@@ -68,19 +78,29 @@ const fieldOf = (path: readonly PropertyKey[]): PropertyKey[] => {
 type Shape = { value: RunFormValues; issues: unknown[] };
 
 /** Holds the form to the schema that the server uses. */
-function heldTo(schema: typeof RunInput | typeof RunCorrection, toBody: (values: RunFormValues) => unknown) {
+function heldTo(
+  schema: typeof RunInput | typeof RunCorrection,
+  toBody: (values: RunFormValues) => unknown,
+) {
   return ({ value, issues }: Shape) => {
     const parsed = schema.safeParse(toBody(value));
-    for (const issue of parsed.error?.issues ?? []) issues.push({ ...issue, input: value, path: fieldOf(issue.path) });
+    for (const issue of parsed.error?.issues ?? [])
+      issues.push({ ...issue, input: value, path: fieldOf(issue.path) });
   };
 }
 
-export const NewRunFields = Fields.check((context) => heldTo(RunInput, toRunInput)(context as unknown as Shape));
-export const CorrectRunFields = Fields.check((context) => heldTo(RunCorrection, toRunCorrection)(context as unknown as Shape));
+export const NewRunFields = Fields.check((context) =>
+  heldTo(RunInput, toRunInput)(context as unknown as Shape),
+);
+export const CorrectRunFields = Fields.check((context) =>
+  heldTo(RunCorrection, toRunCorrection)(context as unknown as Shape),
+);
 
 export const StrikeFields = z.object({ reason: Reason });
 
-export const emptyReading = (settings: RunFormValues["readings"][number]["settings"]): RunFormValues["readings"][number] => ({
+export const emptyReading = (
+  settings: RunFormValues["readings"][number]["settings"],
+): RunFormValues["readings"][number] => ({
   settings,
   dosePct: null,
   averageDb: null,
@@ -100,11 +120,16 @@ export const valuesOfRun = (run: RunView): RunFormValues => ({
   covers: run.covers,
   keptReason: run.keptReason,
   unusual: run.unusual,
-  readings: run.readings.map(({ peak, ...reading }) => ({ ...reading, peakDb: peak?.levelDb ?? null, peakWeighting: peak?.weighting ?? "C" })),
+  readings: run.readings.map(({ peak, ...reading }) => ({
+    ...reading,
+    peakDb: peak?.levelDb ?? null,
+    peakWeighting: peak?.weighting ?? "C",
+  })),
   reason: null,
 });
 
 export const driftDb = (before: unknown, after: unknown): number | null =>
   typeof before === "number" && typeof after === "number" ? Math.abs(after - before) : null;
 
-export const isDriftTooLarge = (drift: number | null): boolean => drift !== null && drift > FIELD_CHECK_TOLERANCE_DB + 1e-9;
+export const isDriftTooLarge = (drift: number | null): boolean =>
+  drift !== null && drift > FIELD_CHECK_TOLERANCE_DB + 1e-9;

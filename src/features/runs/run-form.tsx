@@ -1,13 +1,24 @@
 import { useLingui } from "@lingui/react";
-import { useFieldArray, useController, type UseFormReturn } from "react-hook-form";
+import { type UseFormReturn, useController, useFieldArray } from "react-hook-form";
 import { formatShortDate } from "../../../shared/format/date";
 import { formatLevel } from "../../../shared/format/level";
 import type { InstrumentView } from "../../../shared/schemas/run";
 import { Button } from "../../components/button";
 import { ComboboxField } from "../../components/combobox-field";
-import { DateField, DurationField, NumberField, RadioGroup, SelectField, TextAreaField } from "../../components/form";
+import {
+  DateField,
+  DurationField,
+  NumberField,
+  RadioGroup,
+  SelectField,
+  TextAreaField,
+} from "../../components/form";
 import { TextButton } from "../../components/link";
-import { COMMON_SETTINGS, SettingsInput, type TypedSettings } from "../../components/meter-settings";
+import {
+  COMMON_SETTINGS,
+  SettingsInput,
+  type TypedSettings,
+} from "../../components/meter-settings";
 import { useLocale } from "../../lib/i18n";
 import { searchWorkers } from "../../lib/references";
 import { driftDb, emptyReading, isDriftTooLarge, type RunFormValues } from "./run-fields";
@@ -15,7 +26,13 @@ import { driftDb, emptyReading, isDriftTooLarge, type RunFormValues } from "./ru
 type RunForm = UseFormReturn<RunFormValues, unknown, RunFormValues>;
 
 /** Instrument, worker and day: what a run is, and is never corrected into another. */
-export function RunHeadFields({ form, instruments }: { form: RunForm; instruments: readonly InstrumentView[] }) {
+export function RunHeadFields({
+  form,
+  instruments,
+}: {
+  form: RunForm;
+  instruments: readonly InstrumentView[];
+}) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const usable = instruments.filter(({ isArchived, kind }) => !isArchived && kind !== "calibrator");
@@ -29,44 +46,85 @@ export function RunHeadFields({ form, instruments }: { form: RunForm; instrument
         name="instrumentId"
         label={i18n.t("Instrument")}
         emptyLabel={i18n.t("Choose one")}
-        choices={usable.map(({ id, name, serialNumber }) => ({ value: id, label: `${name}, ${serialNumber}` }))}
+        choices={usable.map(({ id, name, serialNumber }) => ({
+          value: id,
+          label: `${name}, ${serialNumber}`,
+        }))}
         note={
           chosen?.calibrationDueOn
             ? isOutOfDate
-              ? i18n.t("Its laboratory calibration ran out on {date}.", { date: formatShortDate(chosen.calibrationDueOn, locale) })
-              : i18n.t("Calibration due {date}.", { date: formatShortDate(chosen.calibrationDueOn, locale) })
+              ? i18n.t("Its laboratory calibration ran out on {date}.", {
+                  date: formatShortDate(chosen.calibrationDueOn, locale),
+                })
+              : i18n.t("Calibration due {date}.", {
+                  date: formatShortDate(chosen.calibrationDueOn, locale),
+                })
             : undefined
         }
       />
       <ComboboxField form={form} name="workerId" label={i18n.t("Worn by")} search={searchWorkers} />
-      <DateField form={form} name="date" label={i18n.t("Day")} note={i18n.t("On which the shift began.")} />
+      <DateField
+        form={form}
+        name="date"
+        label={i18n.t("Day")}
+        note={i18n.t("On which the shift began.")}
+      />
     </>
   );
 }
 
-export const isCalibrationOut = (instrument: Pick<InstrumentView, "calibrationDueOn"> | undefined, date: unknown): boolean =>
-  instrument?.calibrationDueOn != null && typeof date === "string" && instrument.calibrationDueOn < date;
+export const isCalibrationOut = (
+  instrument: Pick<InstrumentView, "calibrationDueOn"> | undefined,
+  date: unknown,
+): boolean =>
+  instrument?.calibrationDueOn != null &&
+  typeof date === "string" &&
+  instrument.calibrationDueOn < date;
 
 /** What the instrument said, and under which conditions. */
-export function RunFactsFields({ form, presets, needsKeptReason }: { form: RunForm; presets: readonly TypedSettings[]; needsKeptReason: boolean }) {
+export function RunFactsFields({
+  form,
+  presets,
+  needsKeptReason,
+}: {
+  form: RunForm;
+  presets: readonly TypedSettings[];
+  needsKeptReason: boolean;
+}) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const drift = driftDb(form.watch("checkBeforeDb"), form.watch("checkAfterDb"));
   const isTooLarge = isDriftTooLarge(drift);
   return (
     <>
-      <DurationField form={form} name="durationMin" label={i18n.t("Run time")} unit="min" note={i18n.t("450, 7:30 or 7.5h.")} />
+      <DurationField
+        form={form}
+        name="durationMin"
+        label={i18n.t("Run time")}
+        unit="min"
+        note={i18n.t("450, 7:30 or 7.5h.")}
+      />
       <RadioGroup
         form={form}
         name="covers"
         label={i18n.t("It covers")}
         choices={[
           { value: "shift", label: i18n.t("the shift") },
-          { value: "projected", label: i18n.t("a part; the rest was like it"), note: i18n.t("The result is marked projected.") },
+          {
+            value: "projected",
+            label: i18n.t("a part; the rest was like it"),
+            note: i18n.t("The result is marked projected."),
+          },
           { value: "part", label: i18n.t("a part; only evidence") },
         ]}
       />
-      <NumberField form={form} name="checkBeforeDb" label={i18n.t("Field check before")} unit="dB" isOptional />
+      <NumberField
+        form={form}
+        name="checkBeforeDb"
+        label={i18n.t("Field check before")}
+        unit="dB"
+        isOptional
+      />
       <NumberField
         form={form}
         name="checkAfterDb"
@@ -89,7 +147,13 @@ export function RunFactsFields({ form, presets, needsKeptReason }: { form: RunFo
         />
       )}
       <ReadingRows form={form} presets={presets} />
-      <TextAreaField form={form} name="unusual" label={i18n.t("Anything unusual")} rows={2} isOptional />
+      <TextAreaField
+        form={form}
+        name="unusual"
+        label={i18n.t("Anything unusual")}
+        rows={2}
+        isOptional
+      />
     </>
   );
 }
@@ -101,7 +165,8 @@ function ReadingRows({ form, presets }: { form: RunForm; presets: readonly Typed
   const add = () => {
     const used = form.getValues("readings").length;
     const settings = presets[used] ?? COMMON_SETTINGS[used % COMMON_SETTINGS.length];
-    if (settings) rows.append(emptyReading(settings as RunFormValues["readings"][number]["settings"]));
+    if (settings)
+      rows.append(emptyReading(settings as RunFormValues["readings"][number]["settings"]));
   };
   return (
     <div className="reading-rows">
@@ -118,12 +183,47 @@ function ReadingRows({ form, presets }: { form: RunForm; presets: readonly Typed
           </legend>
           <ReadingSettings form={form} index={index} />
           <div className="reading-figures">
-            <NumberField form={form} name={`readings.${index}.dosePct`} label={i18n.t("Dose")} unit="%" isOptional />
-            <NumberField form={form} name={`readings.${index}.averageDb`} label={i18n.t("Average")} unit="dB" isOptional />
-            <NumberField form={form} name={`readings.${index}.lceqDb`} label={i18n.t("LCeq")} unit="dB" isOptional />
-            <NumberField form={form} name={`readings.${index}.lasMaxDb`} label={i18n.t("LASmax")} unit="dB" isOptional />
-            <NumberField form={form} name={`readings.${index}.peakDb`} label={i18n.t("Peak")} unit="dB" isOptional />
-            <SelectField form={form} name={`readings.${index}.peakWeighting`} label={i18n.t("Peak weighting")} choices={weightings} />
+            <NumberField
+              form={form}
+              name={`readings.${index}.dosePct`}
+              label={i18n.t("Dose")}
+              unit="%"
+              isOptional
+            />
+            <NumberField
+              form={form}
+              name={`readings.${index}.averageDb`}
+              label={i18n.t("Average")}
+              unit="dB"
+              isOptional
+            />
+            <NumberField
+              form={form}
+              name={`readings.${index}.lceqDb`}
+              label={i18n.t("LCeq")}
+              unit="dB"
+              isOptional
+            />
+            <NumberField
+              form={form}
+              name={`readings.${index}.lasMaxDb`}
+              label={i18n.t("LASmax")}
+              unit="dB"
+              isOptional
+            />
+            <NumberField
+              form={form}
+              name={`readings.${index}.peakDb`}
+              label={i18n.t("Peak")}
+              unit="dB"
+              isOptional
+            />
+            <SelectField
+              form={form}
+              name={`readings.${index}.peakWeighting`}
+              label={i18n.t("Peak weighting")}
+              choices={weightings}
+            />
           </div>
         </fieldset>
       ))}
@@ -136,7 +236,10 @@ function ReadingRows({ form, presets }: { form: RunForm; presets: readonly Typed
 
 function ReadingSettings({ form, index }: { form: RunForm; index: number }) {
   const { i18n } = useLingui();
-  const { field, fieldState } = useController({ control: form.control, name: `readings.${index}.settings` });
+  const { field, fieldState } = useController({
+    control: form.control,
+    name: `readings.${index}.settings`,
+  });
   const id = `settings-${index}`;
   return (
     <div className="field">

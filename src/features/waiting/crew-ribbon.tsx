@@ -1,21 +1,33 @@
 import { useLingui } from "@lingui/react";
-import { TextLink } from "../../components/link";
 import type { CrewProgress } from "../../../shared/schemas/waiting";
+import { TextLink } from "../../components/link";
 import { paths } from "../../paths";
 import { crewEnd, crewMoment } from "./due";
 
 const DAY_MIN = 1440;
-const minutesOf = (time: string): number => Number(time.slice(0, 2)) * 60 + Number(time.slice(3, 5));
+const minutesOf = (time: string): number =>
+  Number(time.slice(0, 2)) * 60 + Number(time.slice(3, 5));
 
 /** The crews of one time zone against 24 hours, with now, and how far each day is entered. */
-export function CrewRibbon({ crews, nowTime, title }: { crews: readonly CrewProgress[]; nowTime: string; title?: string }) {
+export function CrewRibbon({
+  crews,
+  nowTime,
+  title,
+}: {
+  crews: readonly CrewProgress[];
+  nowTime: string;
+  title?: string;
+}) {
   const { i18n } = useLingui();
   // The axis begins with the first shift that starts after the night's, at an even hour.
   const starts = crews.map(({ start }) => minutesOf(start)).filter((min) => min >= 240);
   const fromMin = Math.floor(Math.min(360, ...starts) / 120) * 120;
   const place = (min: number) => (((min - fromMin + DAY_MIN) % DAY_MIN) / DAY_MIN) * 100;
   const nowAt = place(minutesOf(nowTime));
-  const hours = Array.from({ length: 13 }, (_, step) => ({ step, hour: (fromMin / 60 + step * 2) % 24 }));
+  const hours = Array.from({ length: 13 }, (_, step) => ({
+    step,
+    hour: (fromMin / 60 + step * 2) % 24,
+  }));
   return (
     <section className="ribbon" aria-label={title ?? i18n.t("Crews today")}>
       {title && <h2 className="ribbon-title">{title}</h2>}
@@ -43,21 +55,38 @@ export function CrewRibbon({ crews, nowTime, title }: { crews: readonly CrewProg
   );
 }
 
-function CrewRow({ crew, nowTime, place, nowAt }: { crew: CrewProgress; nowTime: string; place: (min: number) => number; nowAt: number }) {
+function CrewRow({
+  crew,
+  nowTime,
+  place,
+  nowAt,
+}: {
+  crew: CrewProgress;
+  nowTime: string;
+  place: (min: number) => number;
+  nowAt: number;
+}) {
   const { i18n } = useLingui();
   const from = place(minutesOf(crew.start));
   const to = Math.min(100, from + (crew.lengthMin / DAY_MIN) * 100);
   const moment = crewMoment(crew, nowTime);
-  const done = moment === "over" ? to : moment === "running" ? Math.min(to, Math.max(from, nowAt)) : from;
+  const done =
+    moment === "over" ? to : moment === "running" ? Math.min(to, Math.max(from, nowAt)) : from;
   return (
     <li>
       <span className="ribbon-name">
         {crew.name}
-        <span className="sr-only">{i18n.t("{start} to {end}", { start: crew.start, end: crewEnd(crew) })}</span>
+        <span className="sr-only">
+          {i18n.t("{start} to {end}", { start: crew.start, end: crewEnd(crew) })}
+        </span>
       </span>
       <span className="ribbon-track" aria-hidden="true">
-        {done > from && <span className="ribbon-done" style={{ left: `${from}%`, width: `${done - from}%` }} />}
-        {to > done && <span className="ribbon-open" style={{ left: `${done}%`, width: `${to - done}%` }} />}
+        {done > from && (
+          <span className="ribbon-done" style={{ left: `${from}%`, width: `${done - from}%` }} />
+        )}
+        {to > done && (
+          <span className="ribbon-open" style={{ left: `${done}%`, width: `${to - done}%` }} />
+        )}
         <span className="ribbon-line" style={{ left: `${nowAt}%` }} />
       </span>
       <span className="ribbon-entered">
@@ -76,10 +105,16 @@ function Entered({ crew, isAhead }: { crew: CrewProgress; isAhead: boolean }) {
     isAhead && crew.saved === 0
       ? i18n.t("starts {time}", { time: crew.start })
       : waits === 0
-        ? i18n.t("{saved} of {expected} saved", { saved: crew.saved, expected: Math.max(expected, crew.saved) })
+        ? i18n.t("{saved} of {expected} saved", {
+            saved: crew.saved,
+            expected: Math.max(expected, crew.saved),
+          })
         : i18n.t("{saved} saved, {waits} wait", { saved: crew.saved, waits });
   return (
-    <TextLink className={waits > 0 && !isAhead ? "is-open" : "is-quiet"} to={paths.day(crew.id, crew.date)}>
+    <TextLink
+      className={waits > 0 && !isAhead ? "is-open" : "is-quiet"}
+      to={paths.day(crew.id, crew.date)}
+    >
       {words}
       <span className="sr-only">{i18n.t(", day of {crew}", { crew: crew.name })}</span>
     </TextLink>

@@ -3,11 +3,20 @@ import type { WaitingView } from "../../../shared/schemas/waiting";
 import { api } from "../../lib/api";
 import { ownReply } from "../../lib/own-reply";
 
-const waitingReply = ownReply<WaitingView>("today", "crews", "findings", "toBeChecked", "outgoing", "troubled", "calibrationsDue");
+const waitingReply = ownReply<WaitingView>(
+  "today",
+  "crews",
+  "findings",
+  "toBeChecked",
+  "outgoing",
+  "troubled",
+  "calibrationsDue",
+);
 
 export const waitingQuery = (siteId: string | undefined) =>
   queryOptions({
     queryKey: ["waiting", siteId ?? "all"],
-    queryFn: ({ signal }) => api.get("/waiting", { query: { siteId }, schema: waitingReply, signal }),
+    queryFn: ({ signal }) =>
+      api.get("/waiting", { query: { siteId }, schema: waitingReply, signal }),
     refetchInterval: 60_000,
   });

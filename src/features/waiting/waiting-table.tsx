@@ -1,13 +1,25 @@
 import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { type ReactNode, useMemo } from "react";
-import { noticedSentence, orderSentence, remedyFigure, remedyOf } from "../../../shared/findings/sentences";
+import {
+  noticedSentence,
+  orderSentence,
+  remedyFigure,
+  remedyOf,
+} from "../../../shared/findings/sentences";
 import { findingStateWord, findingWord } from "../../../shared/findings/words";
 import { formatDayMonth, formatWeekday } from "../../../shared/format/date";
 import type { FindingRow } from "../../../shared/schemas/finding";
 import { addDays } from "../../../shared/time/zone";
 import { type DataColumn, DataTable } from "../../components/data-table";
-import { AtEarFigure, DayStrip, OutsideFigure, TableStripGround, TableStripScale, useTableFrame } from "../../components/day-figures";
+import {
+  AtEarFigure,
+  DayStrip,
+  OutsideFigure,
+  TableStripGround,
+  TableStripScale,
+  useTableFrame,
+} from "../../components/day-figures";
 import { TextLink } from "../../components/link";
 import { protectorWordText } from "../../components/protector-word";
 import { useLocale } from "../../lib/i18n";
@@ -28,19 +40,28 @@ function groupLabel(i18n: I18n, group: DueGroup): string {
 }
 
 /** The address where a finding is acted on, and the verb that leads there. */
-function actionOf(i18n: I18n, { kind, worker, facts, id }: FindingRow): { label: string; to: string } {
+function actionOf(
+  i18n: I18n,
+  { kind, worker, facts, id }: FindingRow,
+): { label: string; to: string } {
   const assign = () => {
     const models = remedyOf(facts)?.modelIds ?? [];
-    return worker ? `${paths.worker(worker.id)}?assign=${models.join(",")}#protectors` : paths.finding(id);
+    return worker
+      ? `${paths.worker(worker.id)}?assign=${models.join(",")}#protectors`
+      : paths.finding(id);
   };
   switch (kind) {
     case "no-protector":
     case "over-limit-at-ear":
     case "dual-protection":
     case "protects-too-little":
-      return worker && remedyOf(facts) ? { label: i18n.t("Assign"), to: assign() } : { label: i18n.t("Plan"), to: paths.finding(id) };
+      return worker && remedyOf(facts)
+        ? { label: i18n.t("Assign"), to: assign() }
+        : { label: i18n.t("Plan"), to: paths.finding(id) };
     case "protects-too-much":
-      return worker && remedyOf(facts) ? { label: i18n.t("Choose"), to: assign() } : { label: i18n.t("Open"), to: paths.finding(id) };
+      return worker && remedyOf(facts)
+        ? { label: i18n.t("Choose"), to: assign() }
+        : { label: i18n.t("Open"), to: paths.finding(id) };
     case "reading-missing":
       return { label: i18n.t("Add"), to: paths.newRun };
     case "instrument":
@@ -59,7 +80,9 @@ function DueCell({ due, today }: { due: Due; today: string }) {
   const isNear = due.date >= addDays(today, -6) && due.date <= addDays(today, 6);
   return (
     <span className="two-lines">
-      <span className="mono">{isNear ? formatWeekday(due.date, locale) : formatDayMonth(due.date, locale)}</span>
+      <span className="mono">
+        {isNear ? formatWeekday(due.date, locale) : formatDayMonth(due.date, locale)}
+      </span>
       {due.isLate && <b className="beneath-ink">{i18n.t("late")}</b>}
     </span>
   );
@@ -98,7 +121,9 @@ export function WaitingTable({
           <span className="beneath">{findingStateWord(i18n, finding.state)}</span>
           {also && (
             <TextLink className="is-quiet beneath" to={paths.finding(also.id)}>
-              {i18n.t("and {what}", { what: findingWord(i18n, also.kind).toLocaleLowerCase(locale) })}
+              {i18n.t("and {what}", {
+                what: findingWord(i18n, also.kind).toLocaleLowerCase(locale),
+              })}
             </TextLink>
           )}
         </span>
@@ -117,7 +142,12 @@ export function WaitingTable({
       head: <TableStripScale frame={frame} />,
       widthPx: 216,
       filler: <TableStripGround frame={frame} />,
-      cell: ({ finding }) => (finding.figures ? <DayStrip figures={finding.figures} isHidden /> : <TableStripGround frame={frame} />),
+      cell: ({ finding }) =>
+        finding.figures ? (
+          <DayStrip figures={finding.figures} isHidden />
+        ) : (
+          <TableStripGround frame={frame} />
+        ),
     },
     {
       id: "outside",
@@ -134,7 +164,9 @@ export function WaitingTable({
         return (
           <span className="two-lines">
             <b>{figure ? i18n.t("{order}: {figure}", { order, figure }) : order}</b>
-            <span className="beneath">{noticedSentence(i18n, locale, finding.kind, finding.facts)}</span>
+            <span className="beneath">
+              {noticedSentence(i18n, locale, finding.kind, finding.facts)}
+            </span>
           </span>
         );
       },
@@ -190,7 +222,9 @@ function Who({ finding }: { finding: FindingRow }) {
       <TextLink className="is-quiet is-name" to={paths.worker(worker.id)}>
         {worker.name}
       </TextLink>
-      <span className="beneath">{[worker.employeeNumber, crewName].filter(Boolean).join(", ")}</span>
+      <span className="beneath">
+        {[worker.employeeNumber, crewName].filter(Boolean).join(", ")}
+      </span>
     </span>
   );
 }

@@ -1,5 +1,10 @@
 import { infiniteQueryOptions, queryOptions, useMutation } from "@tanstack/react-query";
-import { HistoryPage, SignInCodeView, WorkerPage, WorkerView } from "../../../shared/schemas/worker";
+import {
+  HistoryPage,
+  SignInCodeView,
+  WorkerPage,
+  WorkerView,
+} from "../../../shared/schemas/worker";
 import { api } from "../../lib/api";
 
 export interface WorkerListFilter {
@@ -15,7 +20,11 @@ export const workerQueries = {
     infiniteQueryOptions({
       queryKey: [...workerQueries.all, "list", filter],
       queryFn: ({ pageParam, signal }) =>
-        api.get("/workers", { query: { ...filter, search: filter.search || undefined, cursor: pageParam }, schema: WorkerPage, signal }),
+        api.get("/workers", {
+          query: { ...filter, search: filter.search || undefined, cursor: pageParam },
+          schema: WorkerPage,
+          signal,
+        }),
       initialPageParam: undefined as string | undefined,
       getNextPageParam: ({ next }) => next ?? undefined,
     }),
@@ -27,12 +36,20 @@ export const workerQueries = {
   history: (id: string) =>
     infiniteQueryOptions({
       queryKey: [...workerQueries.all, "history", id],
-      queryFn: ({ pageParam, signal }) => api.get(`/workers/${id}/days`, { query: { cursor: pageParam, limit: 120 }, schema: HistoryPage, signal }),
+      queryFn: ({ pageParam, signal }) =>
+        api.get(`/workers/${id}/days`, {
+          query: { cursor: pageParam, limit: 120 },
+          schema: HistoryPage,
+          signal,
+        }),
       initialPageParam: undefined as string | undefined,
       getNextPageParam: ({ next }) => next ?? undefined,
     }),
 };
 
 export function useIssueCode(id: string) {
-  return useMutation({ mutationFn: () => api.post(`/workers/${id}/sign-in-codes`, { body: {}, schema: SignInCodeView }) });
+  return useMutation({
+    mutationFn: () =>
+      api.post(`/workers/${id}/sign-in-codes`, { body: {}, schema: SignInCodeView }),
+  });
 }

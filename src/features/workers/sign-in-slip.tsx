@@ -1,14 +1,24 @@
 import { useLingui } from "@lingui/react";
+import type { z } from "zod";
 import { formatDate, localDateOf } from "../../../shared/format/date";
 import type { WorkerView } from "../../../shared/schemas/worker";
-import type { z } from "zod";
 import { Button } from "../../components/button";
 import { useLocale } from "../../lib/i18n";
 import { problemText } from "../../lib/problem-text";
 import { useIssueCode } from "./queries";
 
 /** A code for a worker without e-mail, on paper: shown once, and nowhere again. */
-export function SignInSlip({ worker, timeZone, organizationName, issuedBy }: { worker: z.infer<typeof WorkerView>; timeZone: string; organizationName: string; issuedBy: string }) {
+export function SignInSlip({
+  worker,
+  timeZone,
+  organizationName,
+  issuedBy,
+}: {
+  worker: z.infer<typeof WorkerView>;
+  timeZone: string;
+  organizationName: string;
+  issuedBy: string;
+}) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const issue = useIssueCode(worker.id);
@@ -17,7 +27,9 @@ export function SignInSlip({ worker, timeZone, organizationName, issuedBy }: { w
     <>
       {!issue.data && (
         <p className="slip-offer">
-          {worker.hasSignIn ? i18n.t("This worker signs in already; a new code binds another sign-in.") : i18n.t("A one-use code on paper binds a sign-in to this worker.")}{" "}
+          {worker.hasSignIn
+            ? i18n.t("This worker signs in already; a new code binds another sign-in.")
+            : i18n.t("A one-use code on paper binds a sign-in to this worker.")}{" "}
           <Button isBusy={issue.isPending} onClick={() => issue.mutate()}>
             {i18n.t("Make a sign-in code")}
           </Button>
@@ -32,7 +44,12 @@ export function SignInSlip({ worker, timeZone, organizationName, issuedBy }: { w
         <div className="slip">
           <div className="slip-head">
             <b>Dinward</b>
-            <span>{i18n.t("{organization} · issued {date}", { organization: organizationName, date: formatDate(today, locale) })}</span>
+            <span>
+              {i18n.t("{organization} · issued {date}", {
+                organization: organizationName,
+                date: formatDate(today, locale),
+              })}
+            </span>
           </div>
           <h3>{i18n.t("Your own noise record")}</h3>
           <dl className="slip-facts">
@@ -55,7 +72,11 @@ export function SignInSlip({ worker, timeZone, organizationName, issuedBy }: { w
           <ol className="slip-steps">
             <li>{i18n.t("Open {address} and sign in.", { address: window.location.origin })}</li>
             <li>{i18n.t("Type your employee number and this code.")}</li>
-            <li>{i18n.t("The code works once, until {date}.", { date: formatDate(localDateOf(issue.data.expiresAt, timeZone), locale) })}</li>
+            <li>
+              {i18n.t("The code works once, until {date}.", {
+                date: formatDate(localDateOf(issue.data.expiresAt, timeZone), locale),
+              })}
+            </li>
           </ol>
           <p className="slip-actions no-print">
             <Button kind="primary" onClick={() => window.print()}>
@@ -63,7 +84,9 @@ export function SignInSlip({ worker, timeZone, organizationName, issuedBy }: { w
             </Button>
             <Button onClick={() => issue.reset()}>{i18n.t("Put it away")}</Button>
           </p>
-          <p className="field-note no-print">{i18n.t("It is shown here once. An older code of this worker no longer works.")}</p>
+          <p className="field-note no-print">
+            {i18n.t("It is shown here once. An older code of this worker no longer works.")}
+          </p>
         </div>
       )}
     </>

@@ -2,8 +2,15 @@ import { useLingui } from "@lingui/react";
 import { type ReactNode, useMemo } from "react";
 import { formatShortDate } from "../../../shared/format/date";
 import type { WorkerRow } from "../../../shared/schemas/worker";
-import { AtEarFigure, DayStrip, OutsideFigure, TableStripGround, TableStripScale, useTableFrame } from "../../components/day-figures";
 import { type DataColumn, DataTable, type DataTableProps } from "../../components/data-table";
+import {
+  AtEarFigure,
+  DayStrip,
+  OutsideFigure,
+  TableStripGround,
+  TableStripScale,
+  useTableFrame,
+} from "../../components/day-figures";
 import { TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
 import { paths } from "../../paths";
@@ -12,7 +19,10 @@ export function WorkersTable({
   rows,
   showsSite,
   ...rest
-}: { rows: readonly WorkerRow[]; showsSite: boolean; empty: ReactNode } & Pick<DataTableProps<WorkerRow>, "state" | "error" | "onRetry" | "more">) {
+}: { rows: readonly WorkerRow[]; showsSite: boolean; empty: ReactNode } & Pick<
+  DataTableProps<WorkerRow>,
+  "state" | "error" | "onRetry" | "more"
+>) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const days = useMemo(() => rows.map(({ lastDay }) => lastDay), [rows]);
@@ -26,7 +36,13 @@ export function WorkersTable({
         <span className="two-lines">
           <TextLink to={paths.worker(worker.id)}>{worker.name}</TextLink>
           <span className="beneath">
-            {[worker.employeeNumber, worker.crewName ?? i18n.t("no crew"), showsSite && worker.siteName].filter(Boolean).join(", ")}
+            {[
+              worker.employeeNumber,
+              worker.crewName ?? i18n.t("no crew"),
+              showsSite && worker.siteName,
+            ]
+              .filter(Boolean)
+              .join(", ")}
           </span>
         </span>
       ),
@@ -46,21 +62,42 @@ export function WorkersTable({
       head: i18n.t("Last day"),
       cell: ({ id, lastDay, leftOn }) => (
         <span className="two-lines">
-          {lastDay ? <TextLink to={paths.result(id, lastDay.date)}>{formatShortDate(lastDay.date, locale)}</TextLink> : <span>{i18n.t("none yet")}</span>}
-          {leftOn && <span className="beneath">{i18n.t("left {date}", { date: formatShortDate(leftOn, locale) })}</span>}
+          {lastDay ? (
+            <TextLink to={paths.result(id, lastDay.date)}>
+              {formatShortDate(lastDay.date, locale)}
+            </TextLink>
+          ) : (
+            <span>{i18n.t("none yet")}</span>
+          )}
+          {leftOn && (
+            <span className="beneath">
+              {i18n.t("left {date}", { date: formatShortDate(leftOn, locale) })}
+            </span>
+          )}
         </span>
       ),
     },
-    { id: "at-ear", head: i18n.t("At the ear"), unit: i18n.t("day, dB"), cell: ({ lastDay }) => (lastDay ? <AtEarFigure figures={lastDay} /> : "–") },
+    {
+      id: "at-ear",
+      head: i18n.t("At the ear"),
+      unit: i18n.t("day, dB"),
+      cell: ({ lastDay }) => (lastDay ? <AtEarFigure figures={lastDay} /> : "–"),
+    },
     {
       id: "strip",
       kind: "strip",
       head: <TableStripScale frame={frame} />,
       widthPx: 216,
       filler: <TableStripGround frame={frame} />,
-      cell: ({ lastDay }) => (lastDay ? <DayStrip figures={lastDay} isHidden /> : <TableStripGround frame={frame} />),
+      cell: ({ lastDay }) =>
+        lastDay ? <DayStrip figures={lastDay} isHidden /> : <TableStripGround frame={frame} />,
     },
-    { id: "outside", head: i18n.t("Without protection"), unit: i18n.t("day, dB"), cell: ({ lastDay }) => (lastDay ? <OutsideFigure figures={lastDay} /> : "–") },
+    {
+      id: "outside",
+      head: i18n.t("Without protection"),
+      unit: i18n.t("day, dB"),
+      cell: ({ lastDay }) => (lastDay ? <OutsideFigure figures={lastDay} /> : "–"),
+    },
     {
       id: "action",
       head: i18n.t("Open findings"),
@@ -78,7 +115,14 @@ export function WorkersTable({
   ];
   return (
     <div className="workers-table stacked-table">
-      <DataTable caption={i18n.t("Workers by name, with their last day")} columns={columns} rows={rows} rowKey={({ id }) => id} isTwoLine {...rest} />
+      <DataTable
+        caption={i18n.t("Workers by name, with their last day")}
+        columns={columns}
+        rows={rows}
+        rowKey={({ id }) => id}
+        isTwoLine
+        {...rest}
+      />
     </div>
   );
 }
@@ -88,5 +132,7 @@ export function employerWords(
   { employer, employerName }: Pick<WorkerRow, "employer" | "employerName">,
 ): string {
   const kinds = { own: i18n.t("own"), agency: i18n.t("agency"), contractor: i18n.t("contractor") };
-  return employerName ? i18n.t("{kind}, {name}", { kind: kinds[employer], name: employerName }) : kinds[employer];
+  return employerName
+    ? i18n.t("{kind}, {name}", { kind: kinds[employer], name: employerName })
+    : kinds[employer];
 }

@@ -1,0 +1,83 @@
+// @vitest-environment jsdom
+import { render, screen, within } from "@testing-library/react";
+import userEvent from "@testing-library/user-event";
+import { MemoryRouter } from "react-router-dom";
+import { expect, test, vi } from "vitest";
+import { ChangePreview } from "../../shared/schemas/site";
+import { TestLanguage } from "../lib/test-i18n";
+import { ChangeReview } from "./change-preview";
+
+const ada = "0190a8f4-0000-7000-8000-000000000001";
+const bo = "0190a8f4-0000-7000-8000-000000000002";
+const atEar = { line: "at-the-ear", before: "under", after: "cant-tell-yet" };
+
+function show(reply: object, onSave = vi.fn()) {
+  render(
+    <MemoryRouter>
+      <TestLanguage>
+        <ChangeReview
+          preview={ChangePreview.parse(reply)}
+          what="Grinding: 99.5 dB(A) from 1 March 2026 on."
+          workerPath={(id, date) => `/workers/${id}/days/${date}`}
+          onSave={onSave}
+          onBack={vi.fn()}
+          isSaving={false}
+          error={null}
+        />
+      </TestLanguage>
+    </MemoryRouter>,
+  );
+  return onSave;
+}
+
+test("says how many days become what, and gives each worker one row for the same change", async () => {
+  const onSave = show({
+    days: 40,
+    workers: 2,
+    changedDays: 3,
+    tooMany: 0,
+    changes: [
+      { workerId: ada, workerName: "A. Holm", date: "2026-03-04", ...atEar },
+      { workerId: ada, workerName: "A. Holm", date: "2026-03-02", ...atEar },
+      {
+        workerId: bo,
+        workerName: "B. Quist",
+        date: "2026-03-03",
+        line: "protector",
+        before: "good",
+        after: "too-much",
+      },
+    ],
+  });
+  expect(screen.getByRole("heading", { name: "3 days change verdict" })).toHaveFocus();
+  expect(screen.getByText("2 days become Can’t tell yet")).toBeVisible();
+  expect(screen.getByText("1 day becomes Too much")).toBeVisible();
+  const [, first, second] = screen.getAllByRole("row");
+  expect(within(first!).getByRole("link", { name: "A. Holm" })).toHaveAttribute(
+    "href",
+    `/workers/${ada}/days/2026-03-04`,
+  );
+  expect(first).toHaveTextContent("2 Mar 2026 to 4 Mar 2026");
+  expect(second).toHaveTextContent("B. Quist");
+  await userEvent.click(screen.getByRole("button", { name: "Save and compute anew" }));
+  expect(onSave).toHaveBeenCalledOnce();
+});
+
+test("where the list is cut off, the counts are lower bounds", () => {
+  show({
+    days: 5000,
+    workers: 30,
+    changedDays: 900,
+    tooMany: 120,
+    changes: [{ workerId: ada, workerName: "A. Holm", date: "2026-03-04", ...atEar }],
+  });
+  expect(screen.getByText("at least 1 day becomes Can’t tell yet")).toBeVisible();
+  expect(screen.getByText(/120 earlier days were not looked at here/)).toBeVisible();
+});
+
+test("nobody changes verdict: the change can still be saved", () => {
+  show({ days: 12, workers: 3, changedDays: 0, tooMany: 0, changes: [] });
+  expect(screen.getByRole("heading", { name: "Nobody changes verdict" })).toBeVisible();
+  expect(screen.queryByRole("table")).toBeNull();
+  expect(screen.getByRole("button", { name: "Save and compute anew" })).toBeVisible();
+});
