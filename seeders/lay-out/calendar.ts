@@ -3,7 +3,7 @@ import type { DemoCrew } from "../demo/programme";
 import { chance } from "./chance";
 
 const weekday = (date: string) => new Date(`${date}T00:00:00Z`).getUTCDay();
-const daysBetween = (from: string, to: string) =>
+export const daysBetween = (from: string, to: string) =>
   Math.round((Date.parse(to) - Date.parse(from)) / 86_400_000);
 
 /** The days of a site, from the first of the demo to the one on its clock when the demo is filled. */
@@ -77,5 +77,3 @@ export function isAway(number: string, date: string, ago: number): boolean {
   if (isFestive(date) && chance(number, "festive", date.slice(0, 4)) < 0.7) return true;
   return chance(number, "leave", week) < 0.08 || chance(number, "ill", date) < 0.015;
 }
-
-export { daysBetween };

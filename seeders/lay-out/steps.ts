@@ -10,6 +10,7 @@ import { execute } from "../../server/lib/db";
 import { Finding } from "../../server/models/finding";
 import { Shift } from "../../server/models/shift";
 import { savedShifts } from "../../server/queries/saved-shifts";
+import type { FindingStepInput } from "../../shared/schemas/finding";
 import { ProtectorRevisionInput } from "../../shared/schemas/protector";
 import { TaskLevelInput } from "../../shared/schemas/task";
 import { addDays } from "../../shared/time/zone";
@@ -172,21 +173,14 @@ const shifted = (bandsDb: (typeof TASKS)[number]["octaveBandsDb"], byDb: number)
 
 async function handle(
   demo: Demo,
-  step: DatedStep & { step: unknown },
+  taken: Extract<DatedStep, { finding: About }>,
   finding: Finding,
 ): Promise<void> {
-  const input = step.step as Extract<DatedStep, { step: unknown }>["step"];
-  const isDated = input.kind === "take-in-hand" && "dueInDays" in input;
-  const given = isDated
-    ? { kind: "take-in-hand" as const, dueOn: addDays(step.date, input.dueInDays) }
-    : input;
-  await handleFinding(
-    known(demo.actors, step.by),
-    finding,
-    given as Parameters<typeof handleFinding>[2],
-    finding.revision,
-  );
-  if (given.kind === "close") await dateClosing(finding.id, step.date);
+  const { step, date, by } = taken;
+  const input: FindingStepInput =
+    "dueInDays" in step ? { kind: "take-in-hand", dueOn: addDays(date, step.dueInDays) } : step;
+  await handleFinding(known(demo.actors, by), finding, input, finding.revision);
+  if (input.kind === "close") await dateClosing(finding.id, date);
 }
 
 /** The command closes on the day of the clock; here that is the day of filling. */

@@ -25,7 +25,7 @@ export function yearQuery(actor: Actor, { siteId, year, workers }: YearExport): 
   });
   return `SELECT ${columns.join(",\n  ")}
 FROM days d
-JOIN day_results r ON r.id = d.current_result_id AND r.site_id = '${siteId}' AND r.date >= '${year}-01-01' AND r.date <= '${year}-12-31'
+JOIN day_results r ON r.id = d.current_result_id
 JOIN workers w ON w.id = d.worker_id
 JOIN sites s ON s.id = d.site_id
 LEFT JOIN crews c ON c.id = d.crew_id

@@ -55,9 +55,7 @@ export async function listSupervisors(crewId: string): Promise<SupervisorRow[]> 
 }
 
 /** People who hold the supervisor's role at a site. */
-export async function listSupervisorNames(
-  siteId: string,
-): Promise<{ id: string; name: string }[]> {
+export async function listSupervisorNames(siteId: string): Promise<{ id: string; name: string }[]> {
   return rows(
     `SELECT u.id, u.name FROM users u WHERE u.revoked_at IS NULL AND EXISTS (
        SELECT 1 FROM role_grants g WHERE g.user_id = u.id AND g.role = 'supervisor' AND g.revoked_at IS NULL

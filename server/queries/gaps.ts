@@ -24,10 +24,6 @@ const isNotAssessed = `(r.verdict_outside = 'not-assessed' OR (r.verdict_at_ear 
 const inYear = (actor: Actor, d = "d") =>
   `${d}.site_id = :siteId AND ${d}.date >= make_date(:year, 1, 1) AND ${d}.date <= make_date(:year, 12, 31) AND ${visible(dayPolicy, actor, d)}`;
 
-/** A day's result bears its site and date: saying so lets the index on them serve. */
-const CURRENT_RESULT = `r.id = d.current_result_id AND r.site_id = :siteId
-  AND r.date >= make_date(:year, 1, 1) AND r.date <= make_date(:year, 12, 31)`;
-
 /** Who was told, or not told, about a day: one row per worker, day and notice. */
 const notices = (actor: Actor, condition: string) => `
   SELECT i.worker_id AS id, string_agg(DISTINCT u.name, ', ') AS note, i.date
@@ -48,7 +44,7 @@ const notices = (actor: Actor, condition: string) => `
 const gapQueries: Record<Kind, (actor: Actor) => string> = {
   "not-measured": (actor) => `
     SELECT d.worker_id AS id, max(j.name) AS note, max(d.date) AS date
-    FROM days d JOIN day_results r ON ${CURRENT_RESULT} JOIN workers w ON w.id = d.worker_id LEFT JOIN jobs j ON j.id = w.job_id
+    FROM days d JOIN day_results r ON r.id = d.current_result_id JOIN workers w ON w.id = d.worker_id LEFT JOIN jobs j ON j.id = w.job_id
     WHERE ${inYear(actor)} AND r.outside_db > ${IN_NOISE_DB} AND r.grade IN ('task-level', 'estimate')
       AND NOT EXISTS (SELECT 1 FROM runs m WHERE m.worker_id = d.worker_id AND m.date >= make_date(:year, 1, 1)
         AND m.date <= make_date(:year, 12, 31) AND NOT m.is_void)
@@ -71,7 +67,7 @@ const gapQueries: Record<Kind, (actor: Actor) => string> = {
     ),
   "not-assessed": (actor) => `
     SELECT d.worker_id AS id, coalesce(r.reason, CASE WHEN r.id IS NULL THEN 'not-computed' END) AS note, d.date
-    FROM days d LEFT JOIN day_results r ON ${CURRENT_RESULT}
+    FROM days d LEFT JOIN day_results r ON r.id = d.current_result_id
     WHERE ${inYear(actor)} AND (${isNotAssessed} OR (r.id IS NULL AND EXISTS (
       SELECT 1 FROM shifts f WHERE f.worker_id = d.worker_id AND f.date = d.date AND NOT f.is_void)))`,
 };
@@ -108,7 +104,7 @@ export async function yearGaps(
        count(*) FILTER (WHERE EXISTS (SELECT 1 FROM shifts f WHERE f.worker_id = d.worker_id AND f.date = d.date AND f.revision > 1))::int AS corrected,
        percentile_cont(0.5) WITHIN GROUP (ORDER BY r.at_ear_db) AS "medianAtEarDb",
        percentile_cont(0.5) WITHIN GROUP (ORDER BY r.outside_db) AS "medianOutsideDb"
-     FROM days d JOIN day_results r ON ${CURRENT_RESULT} WHERE ${inYear(actor)} GROUP BY 1 ORDER BY 1`,
+     FROM days d JOIN day_results r ON r.id = d.current_result_id WHERE ${inYear(actor)} GROUP BY 1 ORDER BY 1`,
     values,
   );
   const years = await rows<{ year: number }>(
@@ -119,7 +115,7 @@ export async function yearGaps(
   );
   const ruleSets = await rows<{ key: string; version: number }>(
     `SELECT DISTINCT r.governing_rule_set AS key, r.governing_version AS version
-     FROM days d JOIN day_results r ON ${CURRENT_RESULT} WHERE ${inYear(actor)} ORDER BY 1, 2`,
+     FROM days d JOIN day_results r ON r.id = d.current_result_id WHERE ${inYear(actor)} ORDER BY 1, 2`,
     values,
   );
   return { counts, months, years: years.map((found) => found.year), ruleSets };

@@ -126,6 +126,7 @@ export function Component() {
             },
             {
               id: "serial",
+              hidesOnPhone: true,
               head: i18n.t("Serial number"),
               sortValue: ({ serialNumber }) => serialNumber,
               cell: ({ serialNumber }) => <span className="mono">{serialNumber}</span>,

@@ -128,6 +128,7 @@ export function Component() {
             },
             {
               id: "workers",
+              hidesOnPhone: true,
               head: i18n.t("Workers"),
               kind: "figure",
               sortValue: ({ workersCount }) => workersCount,

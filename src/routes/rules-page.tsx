@@ -86,6 +86,7 @@ export function Component() {
             },
             {
               id: "wear",
+              hidesOnPhone: true,
               head: i18n.t("Worn from"),
               unit: "dB(A)",
               kind: "figure",

@@ -135,6 +135,7 @@ export function Component() {
             },
             {
               id: "metric",
+              hidesOnPhone: true,
               head: i18n.t("Metric"),
               cell: (task) =>
                 task.level ? (

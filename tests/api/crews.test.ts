@@ -26,6 +26,14 @@ describeEndpoint({
   call: async (site) => ({ method: "get", path: `/crews/${(await buildCrew({ site })).id}` }),
 });
 describeEndpoint({
+  route: "GET /supervisors",
+  as: "officer",
+  not: "auditor",
+  event: null,
+  bad: { path: "?siteId=x" },
+  call: async (site) => ({ method: "get", path: `/supervisors?siteId=${site.id}` }),
+});
+describeEndpoint({
   route: "POST /crews",
   as: "officer",
   not: "supervisor",
@@ -212,4 +220,29 @@ describe("a crew", () => {
       can: { change: false, enterDay: false },
     });
   });
+});
+
+test("whoever holds the role at a site may be given its crews, with or without one already", async () => {
+  const site = await buildSite();
+  const other = await buildSite({ organizationId: site.organizationId });
+  const { organizationId } = site;
+  const officer = await buildUser({ organizationId, roles: ["officer"] });
+  const everywhere = await buildUser({ organizationId, name: "A. Holm", roles: ["supervisor"] });
+  const here = await buildUser({
+    organizationId,
+    name: "B. Quist",
+    roles: ["supervisor"],
+    siteId: site.id,
+  });
+  await buildUser({
+    organizationId,
+    name: "C. Elsewhere",
+    roles: ["supervisor"],
+    siteId: other.id,
+  });
+  const answer = await (await signInAs(officer)).get(`/supervisors?siteId=${site.id}`);
+  expect(answer.body.rows).toEqual([
+    { id: everywhere.id, name: "A. Holm" },
+    { id: here.id, name: "B. Quist" },
+  ]);
 });

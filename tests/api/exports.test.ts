@@ -212,6 +212,11 @@ describe("an export that does not reach its end", () => {
   let big: Promise<Site> | undefined;
   const bigSite = () => (big ??= buildBigSite());
 
+  const longList = Array.from({ length: 40 }, (_, index) => ({
+    criterionId: `criterion-number-${index}`,
+    verdict: "under",
+  }));
+
   async function buildBigSite() {
     const site = await buildSite();
     const worker = await buildWorker({ site });
@@ -224,12 +229,12 @@ describe("an export that does not reach its end", () => {
          INSERT INTO day_results (organization_id, site_id, worker_id, date, origin, governing_rule_set, governing_version, method_version, inputs_hash,
            shift_min, unaccounted_min, grade, outside_bound, outside_db, verdict_outside, verdict_at_ear, has_protector, criteria, refs)
          SELECT r.organization_id, r.site_id, c.id, d::date, r.origin, r.governing_rule_set, 1, 1, decode(md5(c.id::text || d), 'hex'), 480, 0, r.grade,
-           r.outside_bound, 80 + random(), r.verdict_outside, r.verdict_at_ear, r.has_protector, r.criteria, r.refs
-         FROM crowd c, generate_series(timestamp '2026-01-01', '2026-12-31', '1 day') d, day_results r WHERE r.id = $3
+           r.outside_bound, 80 + random(), r.verdict_outside, r.verdict_at_ear, r.has_protector, $4::jsonb, r.refs
+         FROM crowd c, generate_series(timestamp '2026-01-01', '2026-04-30', '1 day') d, day_results r WHERE r.id = $3
          RETURNING id, organization_id, site_id, worker_id, date)
        INSERT INTO days (organization_id, site_id, worker_id, date, current_result_id, is_stale)
        SELECT organization_id, site_id, worker_id, date, id, FALSE FROM results`,
-      [site.organizationId, site.id, resultId],
+      [site.organizationId, site.id, resultId, JSON.stringify({ governing: longList })],
     );
     return site;
   }
@@ -286,8 +291,8 @@ describe("an export that does not reach its end", () => {
       `/exports/year.csv?siteId=${site.id}&year=2026`,
     );
     const records: string[][] = parse(answer.text);
-    expect(records.at(-1)?.slice(0, 2)).toEqual(["rows", "36500"]);
-    expect(records).toHaveLength(36_502);
+    expect(records.at(-1)?.slice(0, 2)).toEqual(["rows", "12000"]);
+    expect(records).toHaveLength(12_002);
   });
 });
 

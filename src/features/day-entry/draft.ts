@@ -185,9 +185,6 @@ export const isSettled = (row: RowDraft, gridRow: GridRow): boolean =>
 export const isSpoken = (row: RowDraft, gridRow: GridRow): boolean =>
   !isSettled(row, gridRow) && (row.isTouched || row.isConfirmed);
 
-export const hasFilledCells = (row: RowDraft): boolean =>
-  !row.isConfirmed && Object.values(row.cells).some((cell) => cell?.mark === "filled");
-
 function changeRow(row: RowDraft, change: Partial<RowDraft>): RowDraft {
   return { ...row, refused: [], isTouched: true, ...change };
 }

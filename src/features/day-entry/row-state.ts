@@ -24,10 +24,6 @@ export function rowState(found: RowEvaluation, gridRow: GridRow, isBehind: boole
   return questions.length > 0 ? "asks" : "ready";
 }
 
-/** Something stands in the row that a person has to look at. */
-export const hasProblem = (found: RowEvaluation): boolean =>
-  found.problems.length > 0 || found.questions.length > 0;
-
 /** Filled in from roster and nominal day, in order, and nobody has said anything about it yet. */
 export const isOnlyFilledIn = (found: RowEvaluation, row: RowDraft, gridRow: GridRow): boolean =>
   !isSettled(row, gridRow) && !isSpoken(row, gridRow) && found.problems.length === 0;
