@@ -1,41 +1,52 @@
 import { defineConfig } from "@lingui/cli";
 import { formatter } from "@lingui/format-po";
 
-/**
- * Pages that a worker's phone may load: their texts go to the small part of the catalogue (see shared/i18n/index.ts). A
- * page missing here would show untranslated text until the other part is there.
- */
-const workerPages = [
-  "src/router.tsx",
-  "src/features/session/**",
-  "src/features/me/**",
-  "src/routes/me*.tsx",
-  "src/routes/sign-in.tsx",
-  "src/routes/signed-in.tsx",
-  "src/routes/signed-out.tsx",
-  "src/routes/no-access.tsx",
-  "src/routes/not-found.tsx",
-  "src/routes/route-error.tsx",
-  "src/routes/loading.tsx",
-];
 const tests = ["**/*.test.ts", "**/*.test.tsx"];
+const pages = (...names: string[]) => names.map((name) => `src/routes/${name}.tsx`);
+const features = (...names: string[]) => names.map((name) => `src/features/${name}/**`);
+
+/**
+ * The catalogue in parts, so that a page loads the words it needs (see shared/i18n/index.ts and src/router.tsx): `base` is
+ * everybody's and all that a worker's phone gets. A page whose part is not loaded would show untranslated text.
+ */
+const parts: Record<string, string[]> = {
+  base: [
+    "src/components/**",
+    "src/lib/**",
+    "src/router.tsx",
+    ...features("session", "me"),
+    ...pages("me-page", "sign-in", "signed-in", "signed-out", "no-access", "not-found", "route-error"),
+    "shared/findings/**",
+    "shared/format/**",
+    "shared/day/**",
+  ],
+  people: [
+    ...features("crew-sheet", "year-file", "trail", "people", "sites-admin"),
+    ...pages("crew-sheet-page", "year-file-page", "trail-page", "people-page", "person-page", "sites-page", "site-form-page"),
+  ],
+  office: [
+    ...features("waiting", "findings", "workers", "results", "runs", "notices", "assignments"),
+    ...pages("waiting-page", "finding*-page", "worker*-page", "result-page", "shift-page", "run*-page"),
+  ],
+  rules: ["shared/acoustics/**", "shared/rule-sets/**"],
+  day: [...features("day-entry"), ...pages("day*-page")],
+  register: [
+    ...features("protectors", "rules", "areas", "tasks", "jobs", "crews", "instruments", "imports"),
+    ...pages("protector*", "rules-page", "site-rules-page", "areas-page", "task*-page", "jobs-page"),
+    ...pages("crew-page", "crews-page", "instruments-page", "import-page", "register-frame"),
+  ],
+  mail: ["server/**"],
+};
 
 export default defineConfig({
   sourceLocale: "en",
   locales: ["en", "de"],
   fallbackLocales: { default: "en" },
-  catalogs: [
-    {
-      path: "<rootDir>/shared/i18n/{locale}",
-      include: ["src/components", "src/lib", ...workerPages],
-      exclude: tests,
-    },
-    {
-      path: "<rootDir>/shared/i18n/office-{locale}",
-      include: ["src", "server", "shared"],
-      exclude: [...tests, "shared/i18n/**", "src/components/**", "src/lib/**", ...workerPages],
-    },
-  ],
+  catalogs: Object.entries(parts).map(([part, include]) => ({
+    path: `<rootDir>/shared/i18n/${part}-{locale}`,
+    include,
+    exclude: tests,
+  })),
   // Without origins and line numbers a moved line changes no catalogue.
   format: formatter({ origins: false, lineNumbers: false, explicitIdAsDefault: true }),
   orderBy: "messageId",

@@ -1,13 +1,13 @@
 import type { I18n } from "@lingui/core";
 import type { QueryClient } from "@tanstack/react-query";
-import { createBrowserRouter, redirect } from "react-router-dom";
-import { addCatalogue, isLocale } from "../shared/i18n";
+import { createBrowserRouter, type RouteObject, redirect } from "react-router-dom";
+import { addCatalogue, type CataloguePart, isLocale } from "../shared/i18n";
 import { sessionQuery } from "./features/session/session";
 import { paths } from "./paths";
 import { dayRoutes } from "./routes/day-routes";
 import { homeOf } from "./routes/home";
 import { Loading } from "./routes/loading";
-import { officerRoutes } from "./routes/officer-routes";
+import { officerRoutes, waitingRoutes } from "./routes/officer-routes";
 import { peopleRoutes } from "./routes/people-routes";
 import { registerRoutes } from "./routes/register-routes";
 import { RouteError } from "./routes/route-error";
@@ -32,10 +32,18 @@ export function createRouter(queryClient: QueryClient, i18n: I18n) {
       const { chooseLocale } = await import("./lib/i18n");
       await chooseLocale(i18n, user.language);
     }
-    // A worker's own page does without the words of the office.
-    if (user.roles.some((role) => role !== "worker")) await addCatalogue(i18n, "office");
     return null;
   };
+
+  /** Pages that need further parts of the catalogue than everybody's. */
+  const withWords = (parts: readonly CataloguePart[], children: RouteObject[]): RouteObject => ({
+    loader: async () => {
+      await Promise.all(parts.map((part) => addCatalogue(i18n, part)));
+      return null;
+    },
+    shouldRevalidate: () => false,
+    children,
+  });
 
   return createBrowserRouter([
     {
@@ -60,10 +68,12 @@ export function createRouter(queryClient: QueryClient, i18n: I18n) {
             {
               errorElement: <RouteError />,
               children: [
-                ...dayRoutes,
-                ...officerRoutes,
-                ...registerRoutes,
-                ...peopleRoutes,
+                { path: paths.me, lazy: () => import("./routes/me-page") },
+                withWords(["office"], waitingRoutes),
+                withWords(["office", "rules"], officerRoutes),
+                withWords(["day", "rules"], dayRoutes),
+                withWords(["register", "office", "rules"], registerRoutes),
+                withWords(["people"], peopleRoutes),
                 { path: "*", lazy: () => import("./routes/not-found") },
               ],
             },

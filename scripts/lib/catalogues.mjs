@@ -1,4 +1,4 @@
-import { existsSync, readdirSync, statSync } from "node:fs";
+import { existsSync, readdirSync, readFileSync, statSync, writeFileSync } from "node:fs";
 import { join } from "node:path";
 import { Failure } from "./failure.mjs";
 import { withLock } from "./lock.mjs";
@@ -18,6 +18,19 @@ function areCataloguesCurrent() {
     });
 }
 
+/** An English text with nothing to fill in is its own id: carrying it twice would be half of a page's words. */
+function dropPlainText(file) {
+  const text = readFileSync(file, "utf8");
+  const match = /JSON\.parse\("((?:[^"\\]|\\.)*)"\)/.exec(text);
+  if (!match) throw new Failure(`${file} does not look like a compiled catalogue`);
+  const messages = JSON.parse(JSON.parse(`"${match[1]}"`));
+  for (const [id, parts] of Object.entries(messages)) {
+    if (parts.length === 1 && parts[0] === id) delete messages[id];
+  }
+  const kept = JSON.stringify(JSON.stringify(messages));
+  writeFileSync(file, text.replace(match[0], () => `JSON.parse(${kept})`));
+}
+
 /** Compiles the translations that are newer than their compiled form. */
 export async function compileCatalogues() {
   if (areCataloguesCurrent()) return;
@@ -30,5 +43,6 @@ export async function compileCatalogues() {
         `The translations could not be compiled:\n${result.output}${result.errors}`,
       );
     }
+    for (const name of readdirSync(folder)) if (/-en\.ts$/.test(name)) dropPlainText(join(folder, name));
   });
 }

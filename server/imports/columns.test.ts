@@ -8,7 +8,7 @@ const page = readFileSync(join(import.meta.dirname, "../../docs/import.md"), "ut
 
 test.each(IMPORT_KINDS)("docs/import.md names every column of %s, and no other", (kind) => {
   const section = page.split(/^## /m).find((part) => part.includes(`(\`${kind}\`)`)) ?? "";
-  const named = [...section.matchAll(/^\| `(\w+)` \| (yes)? *\| (.+) \|$/gm)];
+  const named = [...section.matchAll(/^\| `(\w+)` *\| (yes)? *\| (.+?) *\|$/gm)];
   expect(named.map(([, name, yes, meaning]) => [name, yes === "yes", meaning])).toEqual(
     IMPORT_COLUMNS[kind].map(({ name, isRequired, meaning }) => [name, isRequired, meaning]),
   );

@@ -19,18 +19,21 @@ export function pickLocale(wanted: readonly string[]): Locale {
   return "en";
 }
 
-/**
- * The catalogue comes in two parts: what every page needs, the worker's included, and the rest (officers' screens, mails),
- * which a worker's phone never loads.
- */
-export type CataloguePart = "base" | "office";
+/** Parts of the catalogue (see lingui.config.ts): a page loads what it needs, a worker's phone only the base. */
+export const CATALOGUE_PARTS = ["base", "people", "office", "rules", "day", "register", "mail"] as const;
+export type CataloguePart = (typeof CATALOGUE_PARTS)[number];
 
 // One literal import a file, so that the bundler makes one chunk each.
 const CATALOGUES: Readonly<
   Record<CataloguePart, Readonly<Record<Locale, () => Promise<{ messages: Messages }>>>>
 > = {
-  base: { en: () => import("./en"), de: () => import("./de") },
+  base: { en: () => import("./base-en"), de: () => import("./base-de") },
+  people: { en: () => import("./people-en"), de: () => import("./people-de") },
   office: { en: () => import("./office-en"), de: () => import("./office-de") },
+  rules: { en: () => import("./rules-en"), de: () => import("./rules-de") },
+  day: { en: () => import("./day-en"), de: () => import("./day-de") },
+  register: { en: () => import("./register-en"), de: () => import("./register-de") },
+  mail: { en: () => import("./mail-en"), de: () => import("./mail-de") },
 };
 
 const loadedParts = new WeakMap<I18n, Set<CataloguePart>>();
@@ -40,12 +43,14 @@ async function loadMessages(locale: Locale, parts: Iterable<CataloguePart>): Pro
   return Object.assign({}, ...catalogues.map((catalogue) => catalogue.messages)) as Messages;
 }
 
-/** An i18n object with its compiled catalogue. The server takes both parts; the client starts with the base. */
+/** An i18n object with its compiled catalogue. The server takes all parts; the client starts with the base. */
 export async function createI18n(
   locale: Locale,
-  parts: readonly CataloguePart[] = ["base", "office"],
+  parts: readonly CataloguePart[] = CATALOGUE_PARTS,
 ): Promise<I18n> {
   const i18n = setupI18n({ locale, messages: { [locale]: await loadMessages(locale, parts) } });
+  // English text without anything to fill in is left out of the compiled catalogue: it is its own id.
+  i18n.setMessagesCompiler((text) => [text]);
   loadedParts.set(i18n, new Set(parts));
   return i18n;
 }

@@ -4,7 +4,6 @@ import { paths } from "../paths";
 export const peopleRoutes: RouteObject[] = [
   { path: paths.crewSheet, lazy: () => import("./crew-sheet-page") },
   { path: paths.crewSheetOf(":crewId"), lazy: () => import("./crew-sheet-page") },
-  { path: paths.me, lazy: () => import("./me-page") },
   { path: paths.yearFile, lazy: () => import("./year-file-page") },
   { path: paths.trail, lazy: () => import("./trail-page") },
   { path: paths.people, lazy: () => import("./people-page") },

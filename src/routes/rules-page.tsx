@@ -132,7 +132,12 @@ export function Component() {
                   </TextLink>
                 ),
               },
-              { id: "citation", head: i18n.t("Citation"), cell: ({ citation }) => citation },
+              {
+                id: "citation",
+                head: i18n.t("Citation"),
+                hidesOnPhone: true,
+                cell: ({ citation }) => citation,
+              },
               {
                 id: "version",
                 head: i18n.t("Version"),
