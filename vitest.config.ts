@@ -10,7 +10,10 @@ export default defineConfig({
       {
         test: {
           name: "unit",
-          include: ["{shared,server,scripts,migrations,seeders,bench}/**/*.test.ts", "tests/*.test.ts"],
+          include: [
+            "{shared,server,scripts,migrations,seeders,bench}/**/*.test.ts",
+            "tests/*.test.ts",
+          ],
           setupFiles: published,
         },
       },

@@ -28,7 +28,10 @@ function dropPlainText(file) {
     if (parts.length === 1 && parts[0] === id) delete messages[id];
   }
   const kept = JSON.stringify(JSON.stringify(messages));
-  writeFileSync(file, text.replace(match[0], () => `JSON.parse(${kept})`));
+  writeFileSync(
+    file,
+    text.replace(match[0], () => `JSON.parse(${kept})`),
+  );
 }
 
 /** Compiles the translations that are newer than their compiled form. */
@@ -43,6 +46,7 @@ export async function compileCatalogues() {
         `The translations could not be compiled:\n${result.output}${result.errors}`,
       );
     }
-    for (const name of readdirSync(folder)) if (/-en\.ts$/.test(name)) dropPlainText(join(folder, name));
+    for (const name of readdirSync(folder))
+      if (/-en\.ts$/.test(name)) dropPlainText(join(folder, name));
   });
 }

@@ -19,11 +19,39 @@ export async function lookAfter(): Promise<void> {
         "SELECT count(*)::int AS count FROM (SELECT 1 FROM days WHERE is_stale LIMIT 1) d",
       );
       if (stale && stale.count > 0) await queueRecompute(organizationId);
+      await openCalibrationFindings(organizationId);
       await execute("DELETE FROM idempotency_keys WHERE created_at < now() - interval '30 days'");
     });
   }
   await sequelize().query(
     "DELETE FROM sessions WHERE expire < now(); DELETE FROM rate_limits WHERE resets_at < now()",
     { transaction: null },
+  );
+}
+
+/** Days before its laboratory calibration runs out on which an instrument becomes somebody's business. */
+const CALIBRATION_NOTICE_DAYS = 14;
+
+/** One open finding per instrument whose calibration runs out; a new calibration date closes it. */
+export async function openCalibrationFindings(organizationId: string): Promise<void> {
+  await execute(
+    `WITH due AS (
+       INSERT INTO findings (organization_id, site_id, instrument_id, kind, state, facts, first_date, last_date, days_count, due_on)
+       SELECT i.organization_id, i.site_id, i.id, 'instrument', 'new', jsonb_build_object('calibrationDueOn', i.calibration_due_on),
+         current_date, current_date, 0, i.calibration_due_on
+       FROM instruments i WHERE NOT i.is_archived AND i.calibration_due_on <= current_date + ${CALIBRATION_NOTICE_DAYS}
+         AND NOT EXISTS (SELECT 1 FROM findings f WHERE f.instrument_id = i.id AND f.kind = 'instrument'
+           AND (f.state <> 'closed' OR f.facts->>'calibrationDueOn' = i.calibration_due_on::text))
+       RETURNING id, organization_id)
+     INSERT INTO finding_steps (organization_id, finding_id, kind, to_state) SELECT organization_id, id, 'state', 'new' FROM due`,
+  );
+  await execute(
+    `WITH mended AS (
+       UPDATE findings f SET state = 'closed', closed_on = current_date, closing_reason = 'calibrated', revision = f.revision + 1
+       FROM instruments i WHERE i.id = f.instrument_id AND f.organization_id = $1 AND f.kind = 'instrument' AND f.state <> 'closed'
+         AND (i.is_archived OR i.calibration_due_on IS NULL OR i.calibration_due_on > current_date + ${CALIBRATION_NOTICE_DAYS})
+       RETURNING f.id, f.organization_id)
+     INSERT INTO finding_steps (organization_id, finding_id, kind, to_state, text) SELECT organization_id, id, 'state', 'closed', 'calibrated' FROM mended`,
+    [organizationId],
   );
 }

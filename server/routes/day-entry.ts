@@ -8,6 +8,7 @@ import {
   ShiftView,
   ShiftVoid,
 } from "../../shared/schemas/shift";
+import { CrewDays, CrewDaysQuery } from "../../shared/schemas/waiting";
 import { correctShift } from "../commands/correct-shift";
 import { saveDay } from "../commands/save-day";
 import { endpoint } from "../lib/endpoint";
@@ -15,10 +16,26 @@ import { authorize, findVisible } from "../lib/policy";
 import { Shift } from "../models/shift";
 import { Crew } from "../models/worker";
 import { crewPolicy, may, shiftPolicy } from "../policies";
+import { crewProgress } from "../queries/crew-progress";
 import { dayGrid } from "../queries/day-grid";
 import { shiftView } from "../queries/shift-view";
 
 export function defineDayEntryRoutes(): void {
+  endpoint.get(
+    "/crews/:id/days",
+    {
+      summary: "How far a crew's days are entered",
+      may: may.officer,
+      params: IdParams,
+      query: CrewDaysQuery,
+      reply: CrewDays,
+    },
+    async ({ actor, params, query }) => {
+      const crew = await findVisible(Crew, crewPolicy, params.id, actor);
+      return { rows: await crewProgress(crew.id, query.from, query.to) };
+    },
+  );
+
   endpoint.get(
     "/crews/:id/day",
     {

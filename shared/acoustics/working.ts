@@ -1167,7 +1167,14 @@ function testOf(result: CriterionResult, criterion: Criterion): WorkingValue | n
   const isOver = result.verdict === "over";
   const limit = value(limitValue(criterion));
   const isWithin = result.reason === "within-uncertainty" && !isOver;
-  const parts: MathPart[] = [value(shown(amount)), sign(isOver ? past : notPast), limit];
+  // An upper bound past the limit proves nothing, and neither does a lower one short of it: each is shown as what it is.
+  const isOpenUpper = result.verdict !== "under" && !isOver && result.bound === "upper";
+  const parts: MathPart[] = [
+    ...(result.bound === "exact" ? [] : [sign(result.bound === "upper" ? "≤" : "≥")]),
+    value(shown(amount)),
+    sign(isOver || isOpenUpper ? past : notPast),
+    limit,
+  ];
   const { uncertaintyDb } = result;
   if (uncertaintyDb !== null) {
     const withDb = isOver ? amount - uncertaintyDb : amount + uncertaintyDb;

@@ -20,7 +20,15 @@ export function pickLocale(wanted: readonly string[]): Locale {
 }
 
 /** Parts of the catalogue (see lingui.config.ts): a page loads what it needs, a worker's phone only the base. */
-export const CATALOGUE_PARTS = ["base", "people", "office", "rules", "day", "register", "mail"] as const;
+export const CATALOGUE_PARTS = [
+  "base",
+  "people",
+  "office",
+  "rules",
+  "day",
+  "register",
+  "mail",
+] as const;
 export type CataloguePart = (typeof CATALOGUE_PARTS)[number];
 
 // One literal import a file, so that the bundler makes one chunk each.

@@ -53,7 +53,9 @@ export const CrewDetail = CrewView.extend({
 export type CrewDetail = z.infer<typeof CrewDetail>;
 
 /** Who may be given a crew of a site: people with the role there, by name only. */
-export const SupervisorNameList = z.object({ rows: z.array(z.object({ id: z.uuid(), name: z.string() })) });
+export const SupervisorNameList = z.object({
+  rows: z.array(z.object({ id: z.uuid(), name: z.string() })),
+});
 export const SupervisorNameQuery = z.object({ siteId: z.uuid() });
 
 /** One worker on the Crew sheet. */

@@ -20,6 +20,25 @@ export const CrewProgress = z.object({
 });
 export type CrewProgress = z.infer<typeof CrewProgress>;
 
+/** The same for the days of one crew, at most a quarter of a year at once. */
+export const CrewDaysQuery = z.object({ from: IsoDate, to: IsoDate }).check((context) => {
+  const { from, to } = context.value;
+  const days = (Date.parse(to) - Date.parse(from)) / 86_400_000;
+  if (days < 0 || days > 92) {
+    context.issues.push({
+      code: "custom",
+      input: to,
+      path: ["to"],
+      params: { code: "too-many-days", maximum: 92 },
+    });
+  }
+});
+export const CrewDays = z.object({
+  rows: z.array(
+    z.object({ date: IsoDate, members: z.number(), saved: z.number(), absent: z.number() }),
+  ),
+});
+
 export const WaitingView = z.object({
   today: IsoDate,
   crews: z.array(CrewProgress),

@@ -8,6 +8,7 @@ import type {
 } from "../../shared/acoustics/types";
 import { asReason, reasonText } from "../../shared/findings/reasons";
 import { formatLevel, formatLimit } from "../../shared/format/level";
+import { withinSentence } from "../../shared/format/words";
 import type { Locale } from "../../shared/i18n/index";
 import { actionValueDb, mainLimit, ruleSetVersion } from "../../shared/rule-sets";
 import type { DayFigures } from "../../shared/schemas/finding";
@@ -157,7 +158,7 @@ export function DayStrip({
       widthPx={widthPx}
       k={k}
       isHidden={isHidden}
-      outsideWords={outsideVerdict(i18n, locale, figures).words.toLocaleLowerCase(locale)}
+      outsideWords={withinSentence(outsideVerdict(i18n, locale, figures).words, locale)}
     />
   );
 }
@@ -175,11 +176,7 @@ function judgedOutside(figures: DayFigures, ruleSet: RuleSetVersion): Judged[] {
   const byValue = new Map<number, Judged>();
   for (const result of figures.governingCriteria) {
     const criterion = ruleSet.criteria.find(({ id }) => id === result.criterionId);
-    if (
-      !criterion ||
-      criterion.judged !== "without-protection" ||
-      !LEVEL_QUANTITIES.has(criterion.quantity)
-    )
+    if (criterion?.judged !== "without-protection" || !LEVEL_QUANTITIES.has(criterion.quantity))
       continue;
     const levelDb = levelOf(criterion);
     const before = byValue.get(levelDb);

@@ -1,6 +1,7 @@
 import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { formatLevel, formatLimit, formatWholeLevel } from "../../shared/format/level";
+import { withinSentence } from "../../shared/format/words";
 import type { Locale } from "../../shared/i18n/index";
 import { useLocale } from "../lib/i18n";
 import {
@@ -61,7 +62,7 @@ export function stripLabel(i18n: I18n, props: DropStripProps): string {
       ...props.limits.map((limit) => limit.label),
     ];
     if (props.isExpected) parts.push(i18n.t("expected"));
-    if (props.verdict) parts.push(verdictWord(i18n, props.verdict).toLocaleLowerCase(locale));
+    if (props.verdict) parts.push(withinSentence(verdictWord(i18n, props.verdict), locale));
     let sentence = parts.join(", ");
     if (props.atEarActiveDb !== null)
       sentence += i18n.t("; {level} with the active part on", {

@@ -1,5 +1,5 @@
 import { useLingui } from "@lingui/react";
-import { useQueries, useQuery } from "@tanstack/react-query";
+import { useQuery } from "@tanstack/react-query";
 import { useNavigate, useSearchParams } from "react-router-dom";
 import { formatDay } from "../../shared/format/date";
 import { formatDuration } from "../../shared/format/duration";
@@ -150,20 +150,20 @@ export function Component() {
   );
 }
 
-/** Reads the very grids that a click opens, so that the day is there at once. */
 function LastDays({ crewId, today }: { crewId: string; today: string }) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  const dates = Array.from({ length: LAST_DAYS }, (_, back) => addDays(today, -back));
-  const days = useQueries({
-    queries: dates.map((date) => dayEntryQueries.grid(crewId, date)),
-  });
-  const rows = dates.map((date, at) => ({ date, day: days[at] }));
+  const { data, error, refetch } = useQuery(
+    dayEntryQueries.days(crewId, addDays(today, 1 - LAST_DAYS), today),
+  );
   return (
-    <DataTable<(typeof rows)[number]>
+    <DataTable
       caption={i18n.t("Last days")}
-      rows={rows}
+      rows={data?.rows ?? []}
       rowKey={({ date }) => date}
+      state={error ? "failed" : data ? "ready" : "loading"}
+      error={error}
+      onRetry={() => void refetch()}
       columns={[
         {
           id: "date",
@@ -173,28 +173,7 @@ function LastDays({ crewId, today }: { crewId: string; today: string }) {
             <TextLink to={paths.day(crewId, date)}>{formatDay(date, locale)}</TextLink>
           ),
         },
-        {
-          id: "entered",
-          head: i18n.t("Entered"),
-          cell: ({ day }) => {
-            if (day?.isError) return <span className="not-assessed">{i18n.t("not known")}</span>;
-            const grid = day?.data?.rows;
-            return (
-              <Entered
-                progress={
-                  grid
-                    ? {
-                        members: grid.length,
-                        saved: grid.filter(({ saved }) => saved !== null).length,
-                        absent: grid.filter(({ isAbsent, saved }) => isAbsent && saved === null)
-                          .length,
-                      }
-                    : null
-                }
-              />
-            );
-          },
-        },
+        { id: "entered", head: i18n.t("Entered"), cell: (day) => <Entered progress={day} /> },
       ]}
     />
   );

@@ -17,6 +17,7 @@ const everybody = "officer supervisor worker auditor administrator";
 const matrix: Record<string, string> = {
   "DELETE /shifts/:id": "officer",
   "GET /crews/:id/day": "officer",
+  "GET /crews/:id/days": "officer",
   "GET /crews/:id/sheet": "officer supervisor auditor",
   "GET /entries/:entryId/notices": "officer",
   "GET /findings": "officer supervisor auditor",

@@ -8,6 +8,7 @@ import {
 } from "../../../shared/findings/sentences";
 import { findingWord } from "../../../shared/findings/words";
 import { formatLimit } from "../../../shared/format/level";
+import { withinSentence } from "../../../shared/format/words";
 import type { CrewSheetRow } from "../../../shared/schemas/crew";
 import type { DayFigures } from "../../../shared/schemas/finding";
 import { outsideVerdict, type StripFrame, stripOfDay } from "../../components/day-figures";
@@ -50,7 +51,7 @@ function Figures({
         variant="list"
         widthPx={STRIP_PX}
         k={isFlagged ? 1.5 : 1.15}
-        outsideWords={outsideVerdict(i18n, locale, figures).words.toLocaleLowerCase(locale)}
+        outsideWords={withinSentence(outsideVerdict(i18n, locale, figures).words, locale)}
       />
       <LevelFigure
         levelDb={figures.outsideDb}

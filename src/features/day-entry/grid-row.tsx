@@ -3,6 +3,7 @@ import { type InputHTMLAttributes, memo, type ReactNode } from "react";
 import { formatMinutes } from "../../../shared/format/duration";
 import { formatLevel, formatLevelChange, formatLimit } from "../../../shared/format/level";
 import { editNumber } from "../../../shared/format/number";
+import { withinSentence } from "../../../shared/format/words";
 import type { Locale } from "../../../shared/i18n/index";
 import type { DayFigures } from "../../../shared/schemas/finding";
 import type { GridRow as GridRowView } from "../../../shared/schemas/shift";
@@ -389,7 +390,7 @@ function ResultCells(props: GridRowProps & { rowSpan: number | undefined; at: nu
     : figures
       ? stripLabel(i18n, {
           ...strip,
-          outsideWords: outsideVerdict(i18n, locale, figures).words.toLocaleLowerCase(locale),
+          outsideWords: withinSentence(outsideVerdict(i18n, locale, figures).words, locale),
         })
       : found.hasOtherShift
         ? i18n.t("Worked out with the other shift of that day, when it is saved.")

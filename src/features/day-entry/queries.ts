@@ -2,7 +2,7 @@ import { queryOptions } from "@tanstack/react-query";
 import { CrewList } from "../../../shared/schemas/crew";
 import { EntryNotices, NoticeText } from "../../../shared/schemas/notice";
 import { DayGridView, type DayRowInput, DaySaveView } from "../../../shared/schemas/shift";
-import { WaitingView } from "../../../shared/schemas/waiting";
+import { CrewDays, WaitingView } from "../../../shared/schemas/waiting";
 import { api } from "../../lib/api";
 
 export const dayEntryQueries = {
@@ -22,6 +22,12 @@ export const dayEntryQueries = {
     queryOptions({
       queryKey: [...dayEntryQueries.all, "progress"],
       queryFn: ({ signal }) => api.get("/waiting", { schema: WaitingView, signal }),
+    }),
+  days: (crewId: string, from: string, to: string) =>
+    queryOptions({
+      queryKey: [...dayEntryQueries.all, "days", crewId, from, to],
+      queryFn: ({ signal }) =>
+        api.get(`/crews/${crewId}/days`, { query: { from, to }, schema: CrewDays, signal }),
     }),
   notices: (entryId: string) =>
     queryOptions({

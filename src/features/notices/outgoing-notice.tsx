@@ -3,6 +3,7 @@ import { useQuery } from "@tanstack/react-query";
 import { useState } from "react";
 import { findingWord } from "../../../shared/findings/words";
 import { formatTime } from "../../../shared/format/date";
+import { withinSentence } from "../../../shared/format/words";
 import type { FindingKind } from "../../../shared/schemas/finding";
 import type { EntryNotices, NoticeRow } from "../../../shared/schemas/notice";
 import { Button } from "../../components/button";
@@ -59,7 +60,7 @@ export function OutgoingNotice({
         {workers.length > 0 &&
           i18n.t(", about {names}", { names: workers.map(({ name }) => name).join(", ") })}
         {kinds.length > 0 &&
-          `: ${kinds.map((kind) => findingWord(i18n, kind).toLocaleLowerCase(i18n.locale)).join(", ")}`}
+          `: ${kinds.map((kind) => withinSentence(findingWord(i18n, kind), i18n.locale)).join(", ")}`}
         .
       </p>
       <p className="note-links">

@@ -2,6 +2,7 @@ import { useLingui } from "@lingui/react";
 import type { ReactNode } from "react";
 import { findingStateWord, findingWord } from "../../../shared/findings/words";
 import { formatInstant } from "../../../shared/format/date";
+import { withinSentence } from "../../../shared/format/words";
 import { ruleSetVersion } from "../../../shared/rule-sets";
 import type { FindingKind, FindingState } from "../../../shared/schemas/finding";
 import type { ResultView } from "../../../shared/schemas/result";
@@ -68,7 +69,7 @@ export function ResultFacts({
               <TextLink to={paths.finding(finding.id)}>
                 {findingWord(i18n, finding.kind as FindingKind)}
               </TextLink>
-              {`: ${findingStateWord(i18n, finding.state as FindingState).toLocaleLowerCase(locale)}`}
+              {`: ${withinSentence(findingStateWord(i18n, finding.state as FindingState), locale)}`}
             </span>
           ))}
         </p>

@@ -9,6 +9,7 @@ import type {
   WorkingValue,
 } from "../../../shared/acoustics/working";
 import { scientificParts } from "../../../shared/format/figures";
+import { withinSentence } from "../../../shared/format/words";
 import {
   Equation,
   Fraction,
@@ -286,7 +287,7 @@ export function WorkingStepView({ step, children }: { step: WorkingStep; childre
                 kind="uncertainty"
                 lead={i18n.t("Share of u²")}
                 shares={step.shares.map(({ label, pct }) => ({
-                  label: workingText(i18n, locale, label).toLocaleLowerCase(locale),
+                  label: withinSentence(workingText(i18n, locale, label), locale),
                   sharePct: pct,
                 }))}
               />

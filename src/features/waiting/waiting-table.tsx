@@ -9,6 +9,7 @@ import {
 } from "../../../shared/findings/sentences";
 import { findingStateWord, findingWord } from "../../../shared/findings/words";
 import { formatDayMonth, formatWeekday } from "../../../shared/format/date";
+import { withinSentence } from "../../../shared/format/words";
 import type { FindingRow } from "../../../shared/schemas/finding";
 import { addDays } from "../../../shared/time/zone";
 import { type DataColumn, DataTable } from "../../components/data-table";
@@ -122,7 +123,7 @@ export function WaitingTable({
           {also && (
             <TextLink className="is-quiet beneath" to={paths.finding(also.id)}>
               {i18n.t("and {what}", {
-                what: findingWord(i18n, also.kind).toLocaleLowerCase(locale),
+                what: withinSentence(findingWord(i18n, also.kind), locale),
               })}
             </TextLink>
           )}
