@@ -2,6 +2,7 @@ import { foundation } from "./20261201090000-foundation";
 import { peopleAndWork } from "./20261201090100-people-and-work";
 import { evidence } from "./20261201090200-evidence";
 import { resultsAndFindings } from "./20261201090300-results-and-findings";
+import { indexes } from "./20261201090400-indexes";
 
 /** In the order in which they run. */
-export const migrations = [foundation, peopleAndWork, evidence, resultsAndFindings];
+export const migrations = [foundation, peopleAndWork, evidence, resultsAndFindings, indexes];

@@ -38,13 +38,30 @@ const poolLike = {
   },
 };
 
+/** A session's idle time counts from its last request, give or take this much: reading needs no write then. */
+const TOUCH_AFTER_S = 60;
+
 export function sessions(config: Config<"web">): RequestHandler[] {
   const PgStore = connectPgSimple(session);
+  const idleS = config.SESSION_IDLE_MIN * 60;
+  class Store extends PgStore {
+    override touch(sid: string, _session: session.SessionData, done?: () => void): void {
+      poolLike
+        .query(
+          "UPDATE sessions SET expire = now() + make_interval(secs => $1) WHERE sid = $2 AND expire < now() + make_interval(secs => $3)",
+          [idleS, sid, idleS - Math.min(TOUCH_AFTER_S, idleS / 10)],
+        )
+        .then(
+          () => done?.(),
+          (error) => (done as ((error: unknown) => void) | undefined)?.(error),
+        );
+    }
+  }
   const isHttps = config.PUBLIC_URL.startsWith("https:");
-  const store = new PgStore({
+  const store = new Store({
     pool: poolLike as never,
     tableName: "sessions",
-    ttl: config.SESSION_IDLE_MIN * 60,
+    ttl: idleS,
     pruneSessionInterval: false,
     errorLog: () => undefined,
   });

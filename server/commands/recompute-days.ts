@@ -43,23 +43,23 @@ export async function recomputeDays(
 ): Promise<Recomputation> {
   if (keys.length === 0) return { days: [], opened: [] };
   const days = JSON.stringify(keys.map(({ workerId, date }) => ({ workerId, date })));
-  const heads = await rows<DayKey & { currentResultId: string | null; importedId: string | null }>(
-    `SELECT d.worker_id AS "workerId", d.date::text AS date, d.current_result_id AS "currentResultId",
-       (SELECT r.id FROM day_results r WHERE r.worker_id = d.worker_id AND r.date = d.date AND r.origin = 'imported'
-        ORDER BY (r.id = d.current_result_id) DESC NULLS LAST, r.computed_at DESC LIMIT 1) AS "importedId"
-     FROM days d JOIN jsonb_to_recordset(CAST(:days AS jsonb)) AS x("workerId" uuid, date date) ON x."workerId" = d.worker_id AND x.date = d.date
+  const heads = await rows<DayKey & { currentResultId: string | null }>(
+    `SELECT d.worker_id AS "workerId", d.date::text AS date, d.current_result_id AS "currentResultId"
+     FROM days d JOIN jsonb_to_recordset($1::jsonb) AS x("workerId" uuid, date date) ON x."workerId" = d.worker_id AND x.date = d.date
      ORDER BY d.worker_id, d.date FOR UPDATE OF d`,
-    { days },
+    [days],
   );
   const resolved = await resolveDays(heads);
   const inputs = await hydrateDays(resolved);
   const computed = resolved.map((day, index) => computeDay(day, inputs[index]!));
   const resultIds = await storeResults(organizationId, computed);
 
+  // A day without a shift keeps what was imported for it.
+  const imported = await importedResults(heads.filter((head) => !resultIds.has(keyOf(head))));
+
   const before = new Map(heads.map((head) => [keyOf(head), head.currentResultId]));
   const after = heads.map((head): RecomputedDay => {
-    // A day without a shift keeps what was imported for it.
-    const resultId = resultIds.get(keyOf(head)) ?? head.importedId;
+    const resultId = resultIds.get(keyOf(head)) ?? imported.get(keyOf(head)) ?? null;
     return {
       workerId: head.workerId,
       date: head.date,
@@ -67,7 +67,7 @@ export async function recomputeDays(
       isChanged: before.get(keyOf(head)) !== resultId,
     };
   });
-  const context = new Map(resolved.map((day) => [keyOf(day), day]));
+  const computedOf = new Map(computed.map((one) => [keyOf(one.day), one]));
   await execute(
     `UPDATE days d SET current_result_id = x."resultId", is_stale = FALSE, site_id = coalesce(x."siteId", d.site_id), crew_id = coalesce(x."crewId", d.crew_id)
      FROM jsonb_to_recordset($1::jsonb) AS x("workerId" uuid, date date, "resultId" uuid, "siteId" uuid, "crewId" uuid)
@@ -76,17 +76,15 @@ export async function recomputeDays(
       JSON.stringify(
         after.map((day) => ({
           ...day,
-          siteId: context.get(keyOf(day))?.siteId,
-          crewId: context.get(keyOf(day))?.crewId,
+          siteId: computedOf.get(keyOf(day))?.day.siteId,
+          crewId: computedOf.get(keyOf(day))?.day.crewId,
         })),
       ),
     ],
   );
 
   const causes = after.map((day): DayCauses => {
-    const found = computed.find(
-      (one) => one.day.workerId === day.workerId && one.day.date === day.date,
-    );
+    const found = computedOf.get(keyOf(day));
     return {
       workerId: day.workerId,
       date: day.date,
@@ -103,6 +101,19 @@ export async function recomputeDays(
 }
 
 const keyOf = ({ workerId, date }: DayKey) => `${workerId} ${date}`;
+
+async function importedResults(days: readonly DayKey[]): Promise<Map<string, string>> {
+  if (days.length === 0) return new Map();
+  const found = await rows<DayKey & { id: string }>(
+    `SELECT DISTINCT ON (d.worker_id, d.date) d.worker_id AS "workerId", d.date::text AS date, r.id
+     FROM jsonb_to_recordset($1::jsonb) AS x("workerId" uuid, date date)
+     JOIN days d ON d.worker_id = x."workerId" AND d.date = x.date
+     JOIN day_results r ON r.worker_id = d.worker_id AND r.date = d.date AND r.origin = 'imported'
+     ORDER BY d.worker_id, d.date, (r.id = d.current_result_id) DESC NULLS LAST, r.computed_at DESC`,
+    [JSON.stringify(days.map(({ workerId, date }) => ({ workerId, date })))],
+  );
+  return new Map(found.map((row) => [keyOf(row), row.id]));
+}
 
 interface ComputedDay {
   day: ResolvedDay;
@@ -195,9 +206,9 @@ async function storeResults(
   );
   const stored = await rows<DayKey & { id: string }>(
     `SELECT r.worker_id AS "workerId", r.date::text AS date, r.id
-     FROM jsonb_to_recordset(CAST(:json AS jsonb)) AS x("workerId" uuid, date date, hash text)
+     FROM jsonb_to_recordset($1::jsonb) AS x("workerId" uuid, date date, hash text)
      JOIN day_results r ON r.worker_id = x."workerId" AND r.date = x.date AND r.inputs_hash = decode(x.hash, 'hex')`,
-    { json: JSON.stringify(records.map(({ workerId, date, hash }) => ({ workerId, date, hash }))) },
+    [JSON.stringify(records.map(({ workerId, date, hash }) => ({ workerId, date, hash })))],
   );
   return new Map(stored.map((row) => [keyOf(row), row.id]));
 }

@@ -10,6 +10,7 @@ import { addDays, localDate } from "../../shared/time/zone";
 import { recordAuditMany } from "../lib/audit";
 import { execute, row, rows } from "../lib/db";
 import { AppError, issue } from "../lib/errors";
+import { groupBy } from "../lib/group-by";
 import type { Actor } from "../lib/policy";
 import { Run } from "../models/instrument";
 import type { Crew } from "../models/worker";
@@ -136,7 +137,8 @@ export async function saveDay(
           "s.worker_id = ANY (CAST(:workerIds AS uuid[])) AND s.date BETWEEN CAST(:from AS date) AND CAST(:to AS date)",
           { workerIds: `{${workerIds.join(",")}}`, from: addDays(date, -2), to: addDays(date, 2) },
         );
-  const shiftsOf = (workerId: string) => nearby.filter((shift) => shift.workerId === workerId);
+  const shiftsByWorker = groupBy(nearby, ({ workerId }) => workerId);
+  const shiftsOf = (workerId: string) => shiftsByWorker.get(workerId) ?? [];
 
   const accepted: {
     index: number;
@@ -253,11 +255,12 @@ export async function saveDay(
           "s.worker_id = ANY (CAST(:ids AS uuid[])) AND s.crew_id = :crewId AND s.date = :date",
           { ids: `{${savedIds.join(",")}}`, crewId: crew.id, date },
         );
+  const currentOf = new Map(current.toReversed().map((shift) => [shift.workerId, shift]));
   return {
     entryId,
     saved: [
       ...accepted.map(({ index, row: { workerId } }) => {
-        const stored = current.find((shift) => shift.workerId === workerId);
+        const stored = currentOf.get(workerId);
         return {
           index,
           workerId,

@@ -42,8 +42,11 @@ export async function scheduleNotices({
   if (!site) return;
   const notBefore = new Date(Date.now() + site.delayMin * 60_000);
   const oldest = addDays(localDate(new Date(), site.timeZone), -NEWS_FOR_DAYS);
-  await withdrawUnsent(recomputed);
-  await replaceSent({ organizationId, entryId, notBefore, recomputed });
+  const days = changedDays(recomputed);
+  const earlier = await statesOfNotices(days);
+  if (earlier.some((state) => unsent.has(state))) await withdrawUnsent(days);
+  if (earlier.some((state) => told.has(state)))
+    await replaceSent({ organizationId, entryId, notBefore, days });
   const news = recomputed.opened.filter(
     ({ kind, date }) => NOTIFIED_KINDS.has(kind) && date >= oldest,
   );
@@ -154,10 +157,22 @@ const changedDays = ({ days }: Recomputation) =>
       .map(({ workerId, date, resultId }) => ({ workerId, date, resultId })),
   );
 
+const unsent: ReadonlySet<string> = new Set(["waiting", "held"]);
+const told: ReadonlySet<string> = new Set(["sending", "sent", "possibly-sent"]);
+
+/** How far the notices are that tell of these days: mostly there are none, and nothing has to follow. */
+async function statesOfNotices(days: string): Promise<string[]> {
+  if (days === "[]") return [];
+  const found = await rows<{ state: string }>(
+    `SELECT DISTINCT n.state FROM jsonb_to_recordset($1::jsonb) AS x("workerId" uuid, date date)
+     JOIN notice_items i ON i.worker_id = x."workerId" AND i.date = x.date JOIN notices n ON n.id = i.notice_id`,
+    [days],
+  );
+  return found.map(({ state }) => state);
+}
+
 /** Not told yet: the notice follows the new result, and one of which nothing is left is withdrawn. */
-async function withdrawUnsent(recomputed: Recomputation): Promise<void> {
-  const days = changedDays(recomputed);
-  if (days === "[]") return;
+async function withdrawUnsent(days: string): Promise<void> {
   await execute(
     `UPDATE notice_items i SET result_id = x."resultId" FROM jsonb_to_recordset($1::jsonb) AS x("workerId" uuid, date date, "resultId" uuid), notices n
      WHERE i.worker_id = x."workerId" AND i.date = x.date AND x."resultId" IS NOT NULL AND n.id = i.notice_id AND n.state IN ('waiting', 'held')`,
@@ -180,26 +195,24 @@ async function replaceSent({
   organizationId,
   entryId,
   notBefore,
-  recomputed,
+  days,
 }: {
   organizationId: string;
   entryId: string;
   notBefore: Date;
-  recomputed: Recomputation;
+  days: string;
 }): Promise<void> {
-  const days = changedDays(recomputed);
-  if (days === "[]") return;
   const sent = await rows<Item & { noticeId: string; siteId: string }>(
     `SELECT DISTINCT ON (n.recipient_id, n.audience, i.finding_id, i.worker_id, i.date) n.id AS "noticeId", n.site_id AS "siteId", n.recipient_id AS "recipientId", n.audience,
        i.finding_id AS "findingId", i.worker_id AS "workerId", i.date::text AS date, x."resultId"
      FROM notices n JOIN notice_items i ON i.notice_id = n.id
-     JOIN jsonb_to_recordset(CAST(:days AS jsonb)) AS x("workerId" uuid, date date, "resultId" uuid) ON x."workerId" = i.worker_id AND x.date = i.date
+     JOIN jsonb_to_recordset($1::jsonb) AS x("workerId" uuid, date date, "resultId" uuid) ON x."workerId" = i.worker_id AND x.date = i.date
      JOIN day_results told ON told.id = i.result_id JOIN day_results now ON now.id = x."resultId"
      WHERE n.state IN ('sending', 'sent', 'possibly-sent') AND now.id <> told.id
        AND (now.verdict_at_ear <> told.verdict_at_ear OR now.verdict_outside <> told.verdict_outside
          OR abs(coalesce(now.at_ear_db, 0) - coalesce(told.at_ear_db, 0)) >= 0.05 OR abs(coalesce(now.outside_db, 0) - coalesce(told.outside_db, 0)) >= 0.05)
      ORDER BY n.recipient_id, n.audience, i.finding_id, i.worker_id, i.date, n.created_at DESC`,
-    { days },
+    [days],
   );
   const bySite = new Map<string, typeof sent>();
   for (const item of sent) bySite.set(item.siteId, [...(bySite.get(item.siteId) ?? []), item]);

@@ -1,10 +1,11 @@
 import { randomUUID } from "node:crypto";
 import type { DayInput, ProtectorData, RuleSetVersion } from "../../shared/acoustics/types";
 import type { Cause } from "../../shared/findings/causes";
-import { proposeRemedy } from "../../shared/findings/remedy";
+import { proposeRemedy, type Remedy } from "../../shared/findings/remedy";
 import type { FindingKind, FindingState } from "../../shared/schemas/finding";
 import { recordAudit, recordAuditMany } from "../lib/audit";
 import { execute, rows } from "../lib/db";
+import { groupBy } from "../lib/group-by";
 import { registerOn } from "../queries/protector-register";
 
 export interface DayCauses {
@@ -147,12 +148,11 @@ export async function updateFindings(
     }
   }
   await insertFindings(organizationId, fresh);
-  await attachEvidence(organizationId, evidence);
-  const register = new Map<string, ProtectorData[]>();
-  const facts: { findingId: string; facts: Record<string, unknown> }[] = [];
+  const remedies = new Remedies();
+  const facts = new Map<string, Record<string, unknown>>();
   for (const [findingId, { day, cause }] of latest)
-    facts.push({ findingId, facts: await factsOf(day, cause, register) });
-  await settleFindings([...new Set(evidence.map(({ findingId }) => findingId))], facts);
+    facts.set(findingId, await factsOf(day, cause, remedies));
+  await attachEvidence(organizationId, evidence, facts);
   return opened;
 }
 
@@ -178,23 +178,37 @@ interface NewFinding {
   previousId: string | null;
 }
 
+/** What would put a day right, found once however many of its findings ask. */
+class Remedies {
+  private readonly registers = new Map<string, ProtectorData[]>();
+  private readonly found = new Map<DayCauses, Remedy | null>();
+
+  async of(day: DayCauses, input: DayInput, governing: RuleSetVersion): Promise<Remedy | null> {
+    const known = this.found.get(day);
+    if (known !== undefined) return known;
+    const models = this.registers.get(day.date) ?? (await registerOn(day.date));
+    this.registers.set(day.date, models);
+    const remedy = proposeRemedy(input, governing, models);
+    this.found.set(day, remedy);
+    return remedy;
+  }
+}
+
 async function factsOf(
   day: DayCauses,
   cause: Cause,
-  register: Map<string, ProtectorData[]>,
+  remedies: Remedies,
 ): Promise<Record<string, unknown>> {
   if (!mendable.has(cause.kind) || !day.input || !day.governing) return { ...cause.facts };
-  const models = register.get(day.date) ?? (await registerOn(day.date));
-  register.set(day.date, models);
-  return { ...cause.facts, remedy: proposeRemedy(day.input, day.governing, models) };
+  return { ...cause.facts, remedy: await remedies.of(day, day.input, day.governing) };
 }
 
 async function insertFindings(organizationId: string, fresh: readonly NewFinding[]): Promise<void> {
   if (fresh.length === 0) return;
   const json = JSON.stringify(fresh);
   await execute(
-    `INSERT INTO findings (id, organization_id, site_id, worker_id, job_id, kind, criterion, use_key, state, first_date, last_date, last_result_id, due_on, previous_id)
-     SELECT x.id, $1, x."siteId", x."workerId", x."jobId", x.kind, x.criterion, x."useKey", x.state, x.date, x.date, x."resultId", x.date + x."dueIn", x."previousId"
+    `INSERT INTO findings (id, organization_id, site_id, worker_id, job_id, kind, criterion, use_key, state, first_date, last_date, last_result_id, days_count, due_on, previous_id)
+     SELECT x.id, $1, x."siteId", x."workerId", x."jobId", x.kind, x.criterion, x."useKey", x.state, x.date, x.date, x."resultId", 0, x.date + x."dueIn", x."previousId"
      FROM jsonb_to_recordset($2::jsonb) AS x(id uuid, "siteId" uuid, "workerId" uuid, "jobId" uuid, kind text, criterion text, "useKey" text,
        state text, date date, "resultId" uuid, "dueIn" int, "previousId" uuid)`,
     [organizationId, json],
@@ -216,32 +230,64 @@ async function insertFindings(organizationId: string, fresh: readonly NewFinding
   );
 }
 
+/**
+ * Adds the days to their findings, whose counts and dates move by what was added: a finding of years is not counted
+ * through again for each of its days. The facts become those of the latest day.
+ */
 async function attachEvidence(
   organizationId: string,
   evidence: readonly Evidence[],
+  facts: ReadonlyMap<string, Record<string, unknown>>,
 ): Promise<void> {
-  await execute(
+  if (evidence.length === 0) return;
+  const added = await rows<{ findingId: string }>(
     `INSERT INTO finding_evidence (organization_id, finding_id, worker_id, date, result_id)
      SELECT $1, x."findingId", x."workerId", x.date, x."resultId"
      FROM jsonb_to_recordset($2::jsonb) AS x("findingId" uuid, "workerId" uuid, date date, "resultId" uuid)
-     ON CONFLICT (finding_id, worker_id, date) DO UPDATE SET result_id = excluded.result_id WHERE finding_evidence.result_id <> excluded.result_id`,
+     ON CONFLICT (finding_id, worker_id, date) DO NOTHING RETURNING finding_id AS "findingId"`,
     [organizationId, JSON.stringify(evidence)],
+  );
+  if (added.length < evidence.length) {
+    await execute(
+      `UPDATE finding_evidence e SET result_id = x."resultId"
+       FROM jsonb_to_recordset($1::jsonb) AS x("findingId" uuid, "workerId" uuid, date date, "resultId" uuid)
+       WHERE e.finding_id = x."findingId" AND e.worker_id = x."workerId" AND e.date = x.date AND e.result_id <> x."resultId"`,
+      [JSON.stringify(evidence)],
+    );
+  }
+  const addedTo = groupBy(added, ({ findingId }) => findingId);
+  const moved = [...groupBy(evidence, ({ findingId }) => findingId)].map(([findingId, days]) => {
+    const last = days.reduce((a, b) => (b.date >= a.date ? b : a));
+    return {
+      findingId,
+      added: addedTo.get(findingId)?.length ?? 0,
+      firstDate: days.reduce((a, b) => (b.date < a.date ? b : a)).date,
+      lastDate: last.date,
+      resultId: last.resultId,
+      facts: facts.get(findingId),
+    };
+  });
+  await execute(
+    `UPDATE findings f SET days_count = f.days_count + x.added,
+       first_date = CASE WHEN f.days_count = 0 THEN x."firstDate" ELSE least(f.first_date, x."firstDate") END,
+       last_date = CASE WHEN f.days_count = 0 THEN x."lastDate" ELSE greatest(f.last_date, x."lastDate") END,
+       last_result_id = CASE WHEN f.days_count = 0 OR x."lastDate" >= f.last_date THEN x."resultId" ELSE f.last_result_id END,
+       facts = coalesce(x.facts, f.facts)
+     FROM jsonb_to_recordset($1::jsonb) AS x("findingId" uuid, added int, "firstDate" date, "lastDate" date, "resultId" uuid, facts jsonb)
+     WHERE f.id = x."findingId"`,
+    [JSON.stringify(moved)],
   );
 }
 
-/** Brings counts and dates in line with the evidence, and the facts with those of the latest day. */
-async function settleFindings(
-  findingIds: readonly string[],
-  facts: readonly { findingId: string; facts: Record<string, unknown> }[],
-): Promise<void> {
+/** Brings counts and dates in line with what is left of the evidence. */
+async function recountFindings(findingIds: readonly string[]): Promise<void> {
   if (findingIds.length === 0) return;
   await execute(
-    `UPDATE findings f SET days_count = e.count, first_date = e.first, last_date = e.last, last_result_id = e.result, facts = coalesce(x.facts, f.facts)
+    `UPDATE findings f SET days_count = e.count, first_date = e.first, last_date = e.last, last_result_id = e.result
      FROM (SELECT finding_id, count(*)::int AS count, min(date) AS first, max(date) AS last, (array_agg(result_id ORDER BY date DESC))[1] AS result
            FROM finding_evidence WHERE finding_id = ANY ($1::uuid[]) GROUP BY finding_id) e
-     LEFT JOIN jsonb_to_recordset($2::jsonb) AS x("findingId" uuid, facts jsonb) ON x."findingId" = e.finding_id
      WHERE f.id = e.finding_id`,
-    [findingIds, JSON.stringify(facts)],
+    [findingIds],
   );
 }
 
@@ -275,9 +321,9 @@ async function withdrawEvidence(organizationId: string, days: readonly DayCauses
   const attached = await rows<Attached>(
     `SELECT e.finding_id AS "findingId", e.worker_id AS "workerId", e.date::text AS date, f.kind, f.criterion, f.use_key AS "useKey", f.state
      FROM finding_evidence e JOIN findings f ON f.id = e.finding_id
-     JOIN jsonb_to_recordset(CAST(:days AS jsonb)) AS x("workerId" uuid, date date) ON x."workerId" = e.worker_id AND x.date = e.date
+     JOIN jsonb_to_recordset($1::jsonb) AS x("workerId" uuid, date date) ON x."workerId" = e.worker_id AND x.date = e.date
      WHERE f.state <> 'closed' AND f.kind <> 'problem-reported'`,
-    { days: JSON.stringify(days.map(({ workerId, date }) => ({ workerId, date }))) },
+    [JSON.stringify(days.map(({ workerId, date }) => ({ workerId, date })))],
   );
   const causesOf = new Map(days.map((day) => [`${day.workerId} ${day.date}`, day.causes]));
   const gone = attached.filter(
@@ -298,7 +344,7 @@ async function withdrawEvidence(organizationId: string, days: readonly DayCauses
     { ids: `{${touched.map(({ findingId }) => findingId).join(",")}}` },
   );
   const hasEvidence = new Set(left.map(({ findingId }) => findingId));
-  await settleFindings([...hasEvidence], []);
+  await recountFindings([...hasEvidence]);
   for (const { findingId, date, state } of touched.filter(
     (one) => !hasEvidence.has(one.findingId),
   )) {

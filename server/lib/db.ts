@@ -87,14 +87,20 @@ export function currentTransaction(): Transaction {
   return transaction;
 }
 
-/** Rows of a query, inside the present transaction. Values go in as `:name`. */
+/**
+ * Rows of a query, inside the present transaction. Values go in as `:name`; long ones, such as the JSON of many rows,
+ * as `$1` from a list, which leaves them out of the text that is taken apart on both sides.
+ */
 export async function rows<Row extends object>(
   text: string,
-  replacements: Record<string, unknown> = {},
+  values: Record<string, unknown> | readonly unknown[] = {},
 ): Promise<Row[]> {
+  const given = Array.isArray(values)
+    ? { bind: [...values] }
+    : { replacements: values as BindOrReplacements as Record<string, unknown> };
   return sequelize().query<Row>(text, {
     type: QueryTypes.SELECT,
-    replacements: replacements as BindOrReplacements as Record<string, unknown>,
+    ...given,
     transaction: currentTransaction(),
   });
 }

@@ -64,7 +64,7 @@ interface ShiftTaskRow {
   outerRevisionId: string | null;
 }
 
-const wanted = `wanted AS (SELECT "workerId" AS worker_id, date FROM jsonb_to_recordset(CAST(:days AS jsonb)) AS x("workerId" uuid, date date))`;
+const wanted = `wanted AS (SELECT "workerId" AS worker_id, date FROM jsonb_to_recordset($1::jsonb) AS x("workerId" uuid, date date))`;
 
 /** SQL for the revision of a protector's data that is in force on a date. */
 const modelRevision = (modelId: string) => `(SELECT p.id FROM protector_model_revisions p
@@ -76,9 +76,7 @@ const modelRevision = (modelId: string) => `(SELECT p.id FROM protector_model_re
  */
 export async function resolveDays(days: readonly DayKey[]): Promise<ResolvedDay[]> {
   if (days.length === 0) return [];
-  const parameter = {
-    days: JSON.stringify(days.map(({ workerId, date }) => ({ workerId, date }))),
-  };
+  const parameter = [JSON.stringify(days.map(({ workerId, date }) => ({ workerId, date })))];
   const tasks = await rows<ShiftTaskRow>(
     `WITH ${wanted}
      SELECT w.worker_id AS "workerId", w.date::text AS date, s.id AS "shiftId", s.current_revision_id AS "revisionId", s.site_id AS "siteId",
@@ -119,8 +117,8 @@ export async function resolveDays(days: readonly DayKey[]): Promise<ResolvedDay[
     mustWear: boolean;
     targetDb: number | null;
   }>(
-    `SELECT id, job_id AS "jobId", must_wear AS "mustWear", personal_target_db AS "targetDb" FROM workers WHERE id IN (:ids)`,
-    { ids: [...new Set(days.map(({ workerId }) => workerId))] },
+    `SELECT id, job_id AS "jobId", must_wear AS "mustWear", personal_target_db AS "targetDb" FROM workers WHERE id = ANY ($1::uuid[])`,
+    [[...new Set(days.map(({ workerId }) => workerId))]],
   );
   const siteDays = [...new Set(tasks.map(({ siteId, date }) => `${siteId} ${date}`))].map((key) => {
     const [siteId, date] = key.split(" ");
@@ -134,10 +132,10 @@ export async function resolveDays(days: readonly DayKey[]): Promise<ResolvedDay[
     comparison: string[];
   }>(
     `SELECT x."siteId", x.date::text AS date, s.id, s.governing_rule_set AS governing, s.comparison_rule_sets AS comparison
-     FROM jsonb_to_recordset(CAST(:siteDays AS jsonb)) AS x("siteId" uuid, date date)
+     FROM jsonb_to_recordset($1::jsonb) AS x("siteId" uuid, date date)
      JOIN LATERAL (SELECT * FROM site_settings t WHERE t.site_id = x."siteId" AND t.effective_from <= x.date
        ORDER BY t.effective_from DESC, t.number DESC LIMIT 1) s ON TRUE`,
-    { siteDays: JSON.stringify(siteDays) },
+    [JSON.stringify(siteDays)],
   );
 
   const settingsOf = new Map(settings.map((row) => [`${row.siteId} ${row.date}`, row]));
@@ -278,7 +276,7 @@ async function byId<Row extends { id: string }>(
 ): Promise<Map<string, Row>> {
   const unique = [...new Set(ids)].filter((id) => id !== null);
   if (unique.length === 0) return new Map();
-  const found = await rows<Row>(text, { ids: `{${unique.join(",")}}` });
+  const found = await rows<Row>(text, [unique]);
   return new Map(found.map((row) => [row.id, row]));
 }
 
@@ -292,20 +290,20 @@ export async function hydrateDays(
   const revisions = await byId<RevisionRow>(
     shifts.map(({ revisionId }) => revisionId),
     `SELECT id, shift_id AS "shiftId", length_min AS "lengthMin", unaccounted_how AS how, unaccounted_level_db AS "quietDb"
-     FROM shift_revisions WHERE id = ANY (CAST(:ids AS uuid[]))`,
+     FROM shift_revisions WHERE id = ANY ($1::uuid[])`,
   );
   const timed = await byId<TimedRow>(
     tasks.map(({ id }) => id),
     `SELECT t.id, t.task_id AS "taskId", k.name, t.duration_min AS "durationMin", t.worn_pct AS "wornPct", t.worn_is_shift_wide AS "wornIsShiftWide"
-     FROM shift_tasks t JOIN tasks k ON k.id = t.task_id WHERE t.id = ANY (CAST(:ids AS uuid[]))`,
+     FROM shift_tasks t JOIN tasks k ON k.id = t.task_id WHERE t.id = ANY ($1::uuid[])`,
   );
   const levels = await byId<LevelRow>(
     tasks.map(({ levelId }) => levelId),
-    `SELECT ${LEVEL_COLUMNS("l")} FROM task_levels l WHERE l.id = ANY (CAST(:ids AS uuid[]))`,
+    `SELECT ${LEVEL_COLUMNS("l")} FROM task_levels l WHERE l.id = ANY ($1::uuid[])`,
   );
   const protectors = await byId<ProtectorRow>(
     uses.flatMap(({ inner, outer }) => [inner, outer]),
-    `SELECT ${PROTECTOR_COLUMNS} FROM protector_model_revisions p JOIN protector_models m ON m.id = p.model_id WHERE p.id = ANY (CAST(:ids AS uuid[]))`,
+    `SELECT ${PROTECTOR_COLUMNS} FROM protector_model_revisions p JOIN protector_models m ON m.id = p.model_id WHERE p.id = ANY ($1::uuid[])`,
   );
   const settings = await byId<{
     id: string;
@@ -315,7 +313,7 @@ export async function hydrateDays(
   }>(
     days.map(({ refs }) => refs.settingsId),
     `SELECT id, wear_from_db AS "wearFromDb", credits_active_part AS "creditsActivePart", uses_uncertainty AS "usesUncertainty"
-     FROM site_settings WHERE id = ANY (CAST(:ids AS uuid[]))`,
+     FROM site_settings WHERE id = ANY ($1::uuid[])`,
   );
   const runIds = [...new Set(shifts.flatMap(({ runRevisionIds }) => runRevisionIds))];
   const readings =
@@ -327,8 +325,8 @@ export async function hydrateDays(
        g.weighting, g.response, g.dose_pct AS "dosePct", g.average_db AS "averageDb", g.lceq_db AS "lceqDb", g.las_max_db AS "lasMaxDb",
        g.peak_db AS "peakDb", g.peak_weighting AS "peakWeighting"
      FROM readings g JOIN run_revisions v ON v.id = g.run_revision_id JOIN runs r ON r.id = g.run_id JOIN instruments i ON i.id = r.instrument_id
-     WHERE g.run_revision_id = ANY (CAST(:ids AS uuid[])) ORDER BY g.run_id, g.position`,
-          { ids: `{${runIds.join(",")}}` },
+     WHERE g.run_revision_id = ANY ($1::uuid[]) ORDER BY g.run_id, g.position`,
+          [runIds],
         );
   const readingsOf = groupBy(readings, ({ runRevisionId }) => runRevisionId);
 

@@ -16,20 +16,24 @@ const NAMES_LIMIT = 2000;
 const atEarKeys = RULE_SETS.filter((ruleSet) => mainLimit(ruleSet).judged === "at-the-ear").map(
   ({ key }) => `'${key}'`,
 );
-const judgesAtEar = `r.governing_rule_set IN (${[...new Set(atEarKeys)].join(", ")})`;
+const judgesAtEar = `d.governing_rule_set IN (${[...new Set(atEarKeys)].join(", ")})`;
 /** A line that the rule set does not judge is not missing. */
-const isNotAssessed = `(r.verdict_outside = 'not-assessed' OR (r.verdict_at_ear = 'not-assessed' AND ${judgesAtEar}))`;
+const isNotAssessed = `(d.verdict_outside = 'not-assessed' OR (d.verdict_at_ear = 'not-assessed' AND ${judgesAtEar}))`;
 
-/** The days of a site's year that the actor may see, `d`, with their current results, `r`. */
-const inYear = (actor: Actor, d = "d") =>
-  `${d}.site_id = :siteId AND ${d}.date >= make_date(:year, 1, 1) AND ${d}.date <= make_date(:year, 12, 31) AND ${visible(dayPolicy, actor, d)}`;
+/** The days of a site's year that the actor may see with what is needed of their current results: read once for all. */
+const yearDays = (actor: Actor) => `
+  year_days AS (
+    SELECT d.worker_id, d.date, r.id AS result_id, r.outside_db, r.at_ear_db, r.grade, r.verdict_outside, r.verdict_at_ear, r.word, r.reason,
+      r.governing_rule_set, r.governing_version
+    FROM days d LEFT JOIN day_results r ON r.id = d.current_result_id
+    WHERE d.site_id = :siteId AND d.date >= make_date(:year, 1, 1) AND d.date <= make_date(:year, 12, 31) AND ${visible(dayPolicy, actor, "d")})`;
 
 /** Who was told, or not told, about a day: one row per worker, day and notice. */
-const notices = (actor: Actor, condition: string) => `
+const notices = (condition: string) => `
   SELECT i.worker_id AS id, string_agg(DISTINCT u.name, ', ') AS note, i.date
   FROM notices n JOIN notice_items i ON i.notice_id = n.id JOIN users u ON u.id = n.recipient_id
-  JOIN days d ON d.worker_id = i.worker_id AND d.date = i.date
-  WHERE ${inYear(actor)} AND ${condition} GROUP BY i.worker_id, i.date`;
+  JOIN year_days d ON d.worker_id = i.worker_id AND d.date = i.date
+  WHERE ${condition} GROUP BY i.worker_id, i.date`;
 
 /**
  * What is missing in a year, each as a query of (id of a worker, note, date).
@@ -42,33 +46,29 @@ const notices = (actor: Actor, condition: string) => `
  * - not-assessed: days without a verdict on a line that their rule set judges, or without any result.
  */
 const gapQueries: Record<Kind, (actor: Actor) => string> = {
-  "not-measured": (actor) => `
+  "not-measured": () => `
     SELECT d.worker_id AS id, max(j.name) AS note, max(d.date) AS date
-    FROM days d JOIN day_results r ON r.id = d.current_result_id JOIN workers w ON w.id = d.worker_id LEFT JOIN jobs j ON j.id = w.job_id
-    WHERE ${inYear(actor)} AND r.outside_db > ${IN_NOISE_DB} AND r.grade IN ('task-level', 'estimate')
+    FROM year_days d JOIN workers w ON w.id = d.worker_id LEFT JOIN jobs j ON j.id = w.job_id
+    WHERE d.outside_db > ${IN_NOISE_DB} AND d.grade IN ('task-level', 'estimate')
       AND NOT EXISTS (SELECT 1 FROM runs m WHERE m.worker_id = d.worker_id AND m.date >= make_date(:year, 1, 1)
         AND m.date <= make_date(:year, 12, 31) AND NOT m.is_void)
     GROUP BY d.worker_id`,
   "no-protector": (actor) => `
     SELECT f.worker_id AS id, max(k.name) AS note, max(d.date) AS date
-    FROM findings f JOIN finding_evidence e ON e.finding_id = f.id JOIN days d ON d.worker_id = e.worker_id AND d.date = e.date
+    FROM findings f JOIN finding_evidence e ON e.finding_id = f.id JOIN year_days d ON d.worker_id = e.worker_id AND d.date = e.date
     JOIN day_results r ON r.id = e.result_id LEFT JOIN tasks k ON k.id = r.deciding_task_id
-    WHERE f.kind = 'no-protector' AND f.state <> 'closed' AND ${visible(findingPolicy, actor, "f")} AND ${inYear(actor)}
+    WHERE f.kind = 'no-protector' AND f.state <> 'closed' AND ${visible(findingPolicy, actor, "f")}
     GROUP BY f.worker_id`,
-  "notice-late": (actor) =>
+  "notice-late": () =>
+    notices("n.state IN ('sent', 'possibly-sent') AND n.sent_at > n.created_at + interval '1 day'"),
+  "notice-not-sent": () =>
     notices(
-      actor,
-      "n.state IN ('sent', 'possibly-sent') AND n.sent_at > n.created_at + interval '1 day'",
-    ),
-  "notice-not-sent": (actor) =>
-    notices(
-      actor,
       "(n.state IN ('failed', 'possibly-sent', 'held') OR (n.state IN ('waiting', 'sending') AND (n.last_error IS NOT NULL OR n.not_before < now() - interval '1 day')))",
     ),
-  "not-assessed": (actor) => `
-    SELECT d.worker_id AS id, coalesce(r.reason, CASE WHEN r.id IS NULL THEN 'not-computed' END) AS note, d.date
-    FROM days d LEFT JOIN day_results r ON r.id = d.current_result_id
-    WHERE ${inYear(actor)} AND (${isNotAssessed} OR (r.id IS NULL AND EXISTS (
+  "not-assessed": () => `
+    SELECT d.worker_id AS id, coalesce(d.reason, CASE WHEN d.result_id IS NULL THEN 'not-computed' END) AS note, d.date
+    FROM year_days d
+    WHERE (${isNotAssessed} OR (d.result_id IS NULL AND EXISTS (
       SELECT 1 FROM shifts f WHERE f.worker_id = d.worker_id AND f.date = d.date AND NOT f.is_void)))`,
 };
 
@@ -84,27 +84,28 @@ export async function yearGaps(
 ): Promise<z.input<typeof GapsView>> {
   const values = { siteId, year };
   const kinds = Object.keys(gapQueries) as Kind[];
-  const counts = await rows<{ kind: Kind; count: number }>(
-    kinds
-      .map(
-        (kind) =>
-          `SELECT '${kind}' AS kind, count(*)::int AS count FROM (${gapQueries[kind](actor)}) g`,
-      )
-      .join(" UNION ALL "),
-    values,
+  const counts = kinds.map(
+    (kind) =>
+      `SELECT '${kind}' AS kind, count(*)::int AS count FROM (${gapQueries[kind](actor)}) g`,
   );
-  const months = await rows<z.input<typeof GapsView>["months"][number]>(
-    `SELECT extract(month FROM d.date)::int AS month, count(*)::int AS days,
-       count(*) FILTER (WHERE r.verdict_at_ear = 'over')::int AS over,
-       count(*) FILTER (WHERE r.verdict_at_ear = 'cant-tell-yet')::int AS "cantTell",
+  const months = `SELECT extract(month FROM d.date)::int AS month, count(*)::int AS days,
+       count(*) FILTER (WHERE d.verdict_at_ear = 'over')::int AS over,
+       count(*) FILTER (WHERE d.verdict_at_ear = 'cant-tell-yet')::int AS "cantTell",
        count(*) FILTER (WHERE ${isNotAssessed})::int AS "notAssessed",
-       count(*) FILTER (WHERE r.verdict_outside = 'over')::int AS "overOutside",
-       count(*) FILTER (WHERE r.verdict_outside = 'cant-tell-yet')::int AS "cantTellOutside",
-       count(*) FILTER (WHERE r.word IN ('too-little', 'too-much'))::int AS "protectorFault",
-       count(*) FILTER (WHERE EXISTS (SELECT 1 FROM shifts f WHERE f.worker_id = d.worker_id AND f.date = d.date AND f.revision > 1))::int AS corrected,
-       percentile_cont(0.5) WITHIN GROUP (ORDER BY r.at_ear_db) AS "medianAtEarDb",
-       percentile_cont(0.5) WITHIN GROUP (ORDER BY r.outside_db) AS "medianOutsideDb"
-     FROM days d JOIN day_results r ON r.id = d.current_result_id WHERE ${inYear(actor)} GROUP BY 1 ORDER BY 1`,
+       count(*) FILTER (WHERE d.verdict_outside = 'over')::int AS "overOutside",
+       count(*) FILTER (WHERE d.verdict_outside = 'cant-tell-yet')::int AS "cantTellOutside",
+       count(*) FILTER (WHERE d.word IN ('too-little', 'too-much'))::int AS "protectorFault",
+       count(*) FILTER (WHERE (d.worker_id, d.date) IN (SELECT f.worker_id, f.date FROM shifts f WHERE f.revision > 1))::int AS corrected,
+       percentile_cont(0.5) WITHIN GROUP (ORDER BY d.at_ear_db) AS "medianAtEarDb",
+       percentile_cont(0.5) WITHIN GROUP (ORDER BY d.outside_db) AS "medianOutsideDb"
+     FROM year_days d WHERE d.result_id IS NOT NULL GROUP BY 1 ORDER BY 1`;
+  const ruleSets = `SELECT DISTINCT d.governing_rule_set AS key, d.governing_version AS version
+     FROM year_days d WHERE d.result_id IS NOT NULL ORDER BY 1, 2`;
+  const [found] = await rows<Omit<z.input<typeof GapsView>, "years">>(
+    `WITH ${yearDays(actor)}
+     SELECT (SELECT json_agg(q) FROM (${counts.join(" UNION ALL ")}) q) AS counts,
+       (SELECT coalesce(json_agg(q), '[]') FROM (${months}) q) AS months,
+       (SELECT coalesce(json_agg(q), '[]') FROM (${ruleSets}) q) AS "ruleSets"`,
     values,
   );
   const years = await rows<{ year: number }>(
@@ -113,12 +114,7 @@ export async function yearGaps(
      WHERE EXISTS (SELECT 1 FROM days d WHERE d.site_id = :siteId AND d.date BETWEEN make_date(y, 1, 1) AND make_date(y, 12, 31))`,
     values,
   );
-  const ruleSets = await rows<{ key: string; version: number }>(
-    `SELECT DISTINCT r.governing_rule_set AS key, r.governing_version AS version
-     FROM days d JOIN day_results r ON r.id = d.current_result_id WHERE ${inYear(actor)} ORDER BY 1, 2`,
-    values,
-  );
-  return { counts, months, years: years.map((found) => found.year), ruleSets };
+  return { ...found!, years: years.map(({ year: one }) => one) };
 }
 
 /** The names behind one count. */
@@ -128,7 +124,8 @@ export async function gapNames(
   kind: Kind,
 ): Promise<GapRow[]> {
   return rows<GapRow>(
-    `SELECT g.id, w.name, w.employee_number AS "employeeNumber", g.note, g.date::text AS date
+    `WITH ${yearDays(actor)}
+     SELECT g.id, w.name, w.employee_number AS "employeeNumber", g.note, g.date::text AS date
      FROM (${gapQueries[kind](actor)}) g JOIN workers w ON w.id = g.id ORDER BY g.date DESC, w.employee_number LIMIT ${NAMES_LIMIT}`,
     { siteId, year },
   );

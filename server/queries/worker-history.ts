@@ -1,4 +1,5 @@
 import type { z } from "zod";
+import { levelOf, mainLimit, ruleSetVersion } from "../../shared/rule-sets";
 import type { HistoryFilter, HistoryPage } from "../../shared/schemas/worker";
 import { decodeCursor, pageFrom } from "../lib/cursor";
 import { rows } from "../lib/db";
@@ -9,6 +10,25 @@ import {
   type DayFiguresRow,
   presentDayFigures,
 } from "../presenters/day-figures";
+
+type HistoryRow = z.input<typeof HistoryPage>["rows"][number];
+
+function underItsRules(row: DayFiguresRow): Pick<HistoryRow, "limit" | "kindsOver"> {
+  const ruleSet = ruleSetVersion(row.ruleSetKey, row.ruleSetVersion);
+  if (!ruleSet) return { limit: null, kindsOver: [] };
+  const limit = mainLimit(ruleSet);
+  const over = row.governingCriteria.filter(({ verdict }) => verdict === "over");
+  return {
+    limit: { levelDb: levelOf(limit), isAtEar: limit.judged === "at-the-ear" },
+    kindsOver: [
+      ...new Set(
+        ruleSet.criteria
+          .filter(({ id }) => over.some(({ criterionId }) => criterionId === id))
+          .map(({ kind }) => kind),
+      ),
+    ],
+  };
+}
 
 /** A worker's days with their current results, latest first, as far as the actor may see them. */
 export async function workerHistory(
@@ -31,6 +51,7 @@ export async function workerHistory(
       ...presentDayFigures(row),
       shiftMin: row.shiftMin,
       isStale: row.isStale,
+      ...underItsRules(row),
     })),
     filter.limit,
     ({ date }) => [date],

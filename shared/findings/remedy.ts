@@ -39,6 +39,8 @@ export function proposeRemedy(
   const candidates = [...register.map((inner) => ({ inner, outer: null })), ...pairs(register)];
   let best: { remedy: Remedy; rank: number; overDb: number } | null = null;
   for (const { inner, outer } of candidates) {
+    // One that is good by itself comes before any two, and the ones come first.
+    if (outer && best?.rank === 0) break;
     const protection: Protection = {
       assignmentId: null,
       inner,

@@ -2,13 +2,9 @@ import { setupI18n } from "@lingui/core";
 import { compileMessage } from "@lingui/message-utils/compileMessage";
 import { describe, expect, test } from "vitest";
 import { FINDING_KINDS, type FindingKind } from "../schemas/finding";
-import {
-  type FindingFacts,
-  noticedSentence,
-  orderSentence,
-  remedyFigure,
-  workerSentence,
-} from "./sentences";
+import type { FindingFacts } from "./facts";
+import { noticedSentence, orderSentence, remedyFigure } from "./sentences";
+import { workerSentence } from "./worker-sentence";
 
 const i18n = setupI18n({ locale: "en", messages: { en: {} } }).setMessagesCompiler(compileMessage);
 const remedy = {

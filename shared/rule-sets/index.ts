@@ -53,6 +53,9 @@ export function mainLimit(ruleSet: RuleSetVersion): Criterion {
   return limit;
 }
 
+/** A criterion as an 8-hour level, dB. */
+export const levelOf = (criterion: Criterion): number => criterion.levelDb ?? criterion.value;
+
 /** The value from which the words for a protector hang, dB; null where the rule has no such scale. */
 export function actionValueDb(ruleSet: RuleSetVersion): number | null {
   return ruleSet.protection.adequacy === "en-458" ? ruleSet.protection.targetDb : null;

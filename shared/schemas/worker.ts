@@ -162,7 +162,14 @@ export const HistoryFilter = PageQuery.extend({
   limit: z.coerce.number().int().min(1).max(400).default(60),
 });
 export const HistoryPage = pageOf(
-  DayFigures.extend({ shiftMin: z.number(), isStale: z.boolean() }),
+  DayFigures.extend({
+    shiftMin: z.number(),
+    isStale: z.boolean(),
+    /** The governing rules' main limit, so that a worker's page draws it without the rule sets; null where they are not known. */
+    limit: z.object({ levelDb: z.number(), isAtEar: z.boolean() }).nullable(),
+    /** Kinds of the governing criteria that the day is over. */
+    kindsOver: z.array(z.enum(["limit", "action", "ceiling", "peak", "dual-protection"])),
+  }),
 );
 export const SignInCodeView = z.object({ code: z.string(), expiresAt: z.string() });
 

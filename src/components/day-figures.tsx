@@ -1,33 +1,19 @@
 import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { useMemo } from "react";
-import type {
-  Criterion,
-  RuleSetVersion,
-  Verdict as VerdictCode,
-} from "../../shared/acoustics/types";
+import type { RuleSetVersion, Verdict as VerdictCode } from "../../shared/acoustics/types";
 import { asReason, reasonText } from "../../shared/findings/reasons";
 import { formatLevel, formatLimit } from "../../shared/format/level";
 import { withinSentence } from "../../shared/format/words";
 import type { Locale } from "../../shared/i18n/index";
-import { actionValueDb, mainLimit, ruleSetVersion } from "../../shared/rule-sets";
+import { actionValueDb, levelOf, mainLimit, ruleSetVersion } from "../../shared/rule-sets";
 import type { DayFigures } from "../../shared/schemas/finding";
 import { useLocale } from "../lib/i18n";
 import { DropStrip, type DropStripProps, StripGround, StripScale } from "./drop-strip";
-import type { StripLimit, TargetBand } from "./drop-strip-geometry";
+import type { TargetBand } from "./drop-strip-geometry";
 import { LevelFigure } from "./level-figure";
+import { type StripFrame, stripOfDay } from "./strip-of-day";
 import { Verdict, verdictWord } from "./verdict";
-
-/** What the strips of one rule set hang from. */
-export interface StripFrame {
-  readonly key: string;
-  readonly limits: readonly StripLimit[];
-  readonly targetBand: TargetBand | null;
-  /** Whether the rule judges a daily limit at the ear at all. */
-  readonly hasLimitAtEar: boolean;
-}
-
-const levelOf = (criterion: Criterion): number => criterion.levelDb ?? criterion.value;
 
 export function stripFrame(i18n: I18n, locale: Locale, key: string, version: number): StripFrame {
   const ruleSet = ruleSetVersion(key, version);
@@ -117,27 +103,6 @@ export function TableStripGround({
       widthPx={widthPx}
     />
   );
-}
-
-/** A stored day as the strip draws it. */
-export function stripOfDay(figures: DayFigures, frame: StripFrame): DropStripProps {
-  return {
-    outsideDb: figures.outsideDb,
-    outsideUDb: figures.uncertaintyDb,
-    outsideBound: figures.outsideBound,
-    atEarDb: figures.atEarDb,
-    atEarUDb: figures.uncertaintyDb,
-    atEarActiveDb: figures.atEarActiveDb,
-    atEarAsWorkedDb: figures.atEarAsWorkedDb,
-    whileWornDb: figures.whileWornDb,
-    limits: frame.limits,
-    targetBand: frame.targetBand,
-    isExpected: false,
-    hasProtector: figures.hasProtector,
-    word: figures.word,
-    verdict: frame.hasLimitAtEar ? figures.verdictAtEar : null,
-    decidingTask: figures.decidingTaskName ?? undefined,
-  };
 }
 
 export function DayStrip({

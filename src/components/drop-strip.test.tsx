@@ -2,7 +2,9 @@
 import { cleanup, render, screen } from "@testing-library/react";
 import { afterEach, describe, expect, test } from "vitest";
 import { TestLanguage, testI18n } from "../lib/test-i18n";
-import { DropStrip, type DropStripProps, StripScale, stripLabel } from "./drop-strip";
+import { DropStrip, type DropStripProps, StripScale } from "./drop-strip";
+import { stripLabel } from "./strip-label";
+import { WorkerStrip } from "./worker-strip";
 
 afterEach(cleanup);
 
@@ -73,7 +75,7 @@ test("where the cells beside it say the same, it is silent", () => {
 test("the worker's strip speaks in whole decibels and knows no band", () => {
   const { container } = render(
     <TestLanguage>
-      <DropStrip {...day} atEarDb={78.9} outsideDb={95.6} verdict="under" variant="worker" />
+      <WorkerStrip {...day} atEarDb={78.9} outsideDb={95.6} verdict="under" />
     </TestLanguage>,
   );
   expect(container.textContent).toBe("limit 87around you 9679 at your ear");

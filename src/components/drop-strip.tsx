@@ -1,8 +1,5 @@
-import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
-import { formatLevel, formatLimit, formatWholeLevel } from "../../shared/format/level";
-import { withinSentence } from "../../shared/format/words";
-import type { Locale } from "../../shared/i18n/index";
+import { formatLevel, formatLimit } from "../../shared/format/level";
 import { useLocale } from "../lib/i18n";
 import {
   BAR_THICKNESS,
@@ -14,112 +11,35 @@ import {
   type StripLimit,
   stripGeometry,
   type TargetBand,
-  type Tick,
 } from "./drop-strip-geometry";
-import { verdictWord } from "./verdict";
+import { barPath, Halos, Limits, Marks } from "./drop-strip-marks";
+import { type StripWords, stripLabel } from "./strip-label";
 
 /**
  * `row` fills its table cell, band and limit unbroken under a `StripScale`; `list` stands alone with brackets; `card`
- * writes the figures at the ticks; `worker` is an arrow in whole decibels; `print` is black only, 60 × 8 mm.
+ * writes the figures at the ticks; `print` is black only, 60 × 8 mm. The worker’s arrow is `WorkerStrip`.
  */
-export type StripVariant = "row" | "list" | "card" | "worker" | "print";
+export type StripVariant = "row" | "list" | "card" | "print";
 
-export interface DropStripProps extends StripFacts {
+export interface DropStripProps extends StripWords {
   readonly variant?: StripVariant;
   readonly widthPx?: number;
   readonly k?: number;
   /** Where the cells beside it say the same. */
   readonly isHidden?: boolean;
-  /** The verdict without protection as the end of a sentence: "over 85". */
-  readonly outsideWords?: string;
-  /** The task that decides the protector's word. */
-  readonly decidingTask?: string;
 }
 
 const K: Readonly<Record<StripVariant, number>> = {
   row: 1.5,
   list: 1.5,
   card: 2.1,
-  worker: 2.1,
   print: 1,
 };
-
-/** What a strip says, for those who hear it. One function, so that it never says less than it shows. */
-export function stripLabel(i18n: I18n, props: DropStripProps): string {
-  const locale: Locale = i18n.locale === "de" ? "de" : "en";
-  const level = (levelDb: number) => formatLevel(levelDb, locale);
-  const sentences: string[] = [];
-
-  if (props.atEarDb === null) sentences.push(i18n.t("At the ear not known."));
-  else {
-    const parts = [
-      props.atEarUDb === null
-        ? i18n.t("At the ear {level}", { level: level(props.atEarDb) })
-        : i18n.t("At the ear {level} plus or minus {uncertainty}", {
-            level: level(props.atEarDb),
-            uncertainty: level(props.atEarUDb),
-          }),
-      ...props.limits.map((limit) => limit.label),
-    ];
-    if (props.isExpected) parts.push(i18n.t("expected"));
-    if (props.verdict) parts.push(withinSentence(verdictWord(i18n, props.verdict), locale));
-    let sentence = parts.join(", ");
-    if (props.atEarActiveDb !== null)
-      sentence += i18n.t("; {level} with the active part on", {
-        level: level(props.atEarActiveDb),
-      });
-    if (props.atEarAsWorkedDb !== null)
-      sentence += i18n.t("; {level} as worked", { level: level(props.atEarAsWorkedDb) });
-    sentences.push(`${sentence}.`);
-  }
-
-  if (props.outsideDb === null) sentences.push(i18n.t("Without protection not known."));
-  else {
-    const text = level(props.outsideDb);
-    const outside =
-      props.outsideBound === "lower"
-        ? i18n.t("Without protection at least {level}", { level: text })
-        : props.outsideBound === "upper"
-          ? i18n.t("Without protection at most {level}", { level: text })
-          : i18n.t("Without protection {level}", { level: text });
-    sentences.push(props.outsideWords ? `${outside}, ${props.outsideWords}.` : `${outside}.`);
-  }
-
-  if (props.hasProtector === "no") sentences.push(i18n.t("No protector."));
-  else if (props.hasProtector === "unknown") sentences.push(i18n.t("Protector not known."));
-  else if (props.word && props.whileWornDb !== null) {
-    const worn = level(props.whileWornDb);
-    const word = protectorSentence(i18n, props.word);
-    sentences.push(
-      props.decidingTask
-        ? i18n.t("{word}: {level} in {task}.", { word, level: worn, task: props.decidingTask })
-        : i18n.t("{word}: {level} while worn.", { word, level: worn }),
-    );
-  }
-  return sentences.join(" ");
-}
-
-function protectorSentence(i18n: I18n, word: NonNullable<StripFacts["word"]>): string {
-  switch (word) {
-    case "too-little":
-      return i18n.t("Protector too little");
-    case "just-enough":
-      return i18n.t("Protector just enough");
-    case "good":
-      return i18n.t("Protector good");
-    case "strong-side":
-      return i18n.t("Protector on the strong side");
-    case "too-much":
-      return i18n.t("Protector too much");
-    case "enough":
-      return i18n.t("Protector enough");
-  }
-}
 
 export function DropStrip(props: DropStripProps) {
   const { i18n } = useLingui();
   const { variant = "row", isHidden = false } = props;
-  const widthPx = props.widthPx ?? (variant === "worker" ? 350 : 200);
+  const widthPx = props.widthPx ?? 200;
   const k = props.k ?? K[variant];
   const geometry = stripGeometry(props, { widthPx, k });
   const label = isHidden ? undefined : stripLabel(i18n, props);
@@ -149,8 +69,6 @@ export function DropStrip(props: DropStripProps) {
       </svg>
     );
   }
-  if (variant === "worker")
-    return <WorkerStrip props={props} geometry={geometry} k={k} named={named} />;
 
   const above = variant === "card" ? 24 : variant === "print" ? 5 : 0;
   const below = variant === "card" ? 20 : 0;
@@ -225,19 +143,6 @@ function Band({ geometry: { band, boxHeight } }: { geometry: StripGeometry }) {
 /** Ink and paper of the ruled bar, in units of the box: a line every 1.9. */
 const RULED = [0.9, 1];
 
-const barPath = (
-  bar: NonNullable<StripGeometry["bar"]>,
-  fromX = bar.outerX,
-  toX = bar.innerX,
-  half = bar.thickness / 2,
-) => {
-  const yAt = (x: number) =>
-    bar.outerX === bar.innerX
-      ? bar.outerY
-      : bar.outerY + ((x - bar.outerX) * (bar.innerY - bar.outerY)) / (bar.innerX - bar.outerX);
-  return `M${fromX} ${yAt(fromX) - half}L${toX} ${yAt(toX) - half}L${toX} ${yAt(toX) + half}L${fromX} ${yAt(fromX) + half}Z`;
-};
-
 function Bar({ geometry: { bar }, isExpected }: { geometry: StripGeometry; isExpected: boolean }) {
   if (!bar) return null;
   const half = bar.thickness / 2;
@@ -266,175 +171,6 @@ function Bar({ geometry: { bar }, isExpected }: { geometry: StripGeometry; isExp
       />
     </>
   );
-}
-
-/** Paper beside a limit where the bar runs under it. */
-function Halos({ geometry: { bar, limits } }: { geometry: StripGeometry }) {
-  if (!bar) return null;
-  const [from, to] = [Math.min(bar.outerX, bar.innerX), Math.max(bar.outerX, bar.innerX)];
-  const top = bar.outerY - bar.thickness / 2 - 1;
-  const height = bar.innerY - bar.outerY + bar.thickness + 2;
-  return limits
-    .filter((limit) => limit.x + 2 > from && limit.x - 2 < to)
-    .map((limit) => (
-      <rect
-        key={limit.label}
-        className="strip-halo"
-        x={limit.x - 2}
-        y={top}
-        width={4}
-        height={height}
-      />
-    ));
-}
-
-function Limits({ geometry: { limits, boxHeight } }: { geometry: StripGeometry }) {
-  return limits.map(({ x, label }) => (
-    <path
-      key={label}
-      className="strip-ink"
-      d={`M${x - 3} 0h6v1.5h-2V${boxHeight - 1.5}h2v1.5h-6v-1.5h2V1.5h-2Z`}
-    />
-  ));
-}
-
-function TickMark({
-  tick,
-  isExpected,
-  className,
-}: {
-  tick: Tick;
-  isExpected: boolean;
-  className: string;
-}) {
-  if (!isExpected) {
-    return (
-      <rect
-        className={`strip-ink ${className}`}
-        x={tick.x - tick.width / 2}
-        y={tick.y}
-        width={tick.width}
-        height={tick.height}
-      />
-    );
-  }
-  return (
-    <rect
-      className={`strip-open ${className}`}
-      x={tick.x - tick.width / 2 + 0.7}
-      y={tick.y + 0.7}
-      width={tick.width - 1.4}
-      height={tick.height - 1.4}
-    />
-  );
-}
-
-function Marks({
-  geometry,
-  isExpected,
-  caretScale = 1,
-}: {
-  geometry: StripGeometry;
-  isExpected: boolean;
-  caretScale?: number;
-}) {
-  const { chevrons, whiskers, dotted, link, ring, dot, outer, inner, full, caret, foot } = geometry;
-  return (
-    <>
-      {dotted && (
-        <line
-          className={dotted.isUnknown ? "strip-dots" : "strip-dots is-bound"}
-          x1={dotted.fromX}
-          x2={dotted.toX}
-          y1={dotted.y}
-          y2={dotted.y}
-        />
-      )}
-      {link && (
-        <line className="strip-link" x1={link.fromX} x2={link.toX} y1={link.y} y2={link.y} />
-      )}
-      {ring && <circle className="strip-open" cx={ring.x} cy={ring.y} r={ring.r} />}
-      {dot && <circle className="strip-ink" cx={dot.x} cy={dot.y} r={dot.r} />}
-      {whiskers.map(({ fromX, toX, y }) => (
-        <path
-          key={y}
-          className="strip-line"
-          strokeWidth={1.5}
-          d={`M${fromX} ${y}H${toX}M${toX} ${y - 1.9}v3.8`}
-        />
-      ))}
-      {outer && <TickMark tick={outer} isExpected={isExpected} className="strip-outer" />}
-      {inner && <TickMark tick={inner} isExpected={isExpected} className="strip-inner" />}
-      {full && <TickMark tick={full} isExpected={isExpected} className="strip-inner" />}
-      {chevrons.map(({ x, y, pointsTo }) => {
-        const step = pointsTo === "right" ? 1 : -1;
-        return (
-          <path
-            key={`${pointsTo}${y}`}
-            className="strip-line"
-            strokeWidth={1.6}
-            d={[-4, 0]
-              .map(
-                (dx) => `M${x + (dx - 1) * step} ${y - 4.5}l${4.5 * step} 4.5l${-4.5 * step} 4.5`,
-              )
-              .join("")}
-          />
-        );
-      })}
-      {foot && caret && <Foot foot={foot} caretY={caret.y} scale={caretScale} />}
-      {caret && <Caret x={caret.x} y={caret.y} scale={caretScale} isExpected={isExpected} />}
-    </>
-  );
-}
-
-function Caret({
-  x,
-  y,
-  scale,
-  isExpected,
-}: {
-  x: number;
-  y: number;
-  scale: number;
-  isExpected: boolean;
-}) {
-  const half = 3.3 * scale;
-  return (
-    <path
-      className={isExpected ? "strip-open" : "strip-caret"}
-      d={`M${x} ${y}L${x + half} ${y + 4.4 * scale}H${x - half}Z`}
-    />
-  );
-}
-
-function Foot({
-  foot,
-  caretY,
-  scale,
-}: {
-  foot: NonNullable<StripGeometry["foot"]>;
-  caretY: number;
-  scale: number;
-}) {
-  const base = caretY + 4.4 * scale - 0.8;
-  if (foot.kind === "too-little") {
-    return (
-      <rect
-        className="strip-ink"
-        x={Math.min(foot.fromX, foot.toX)}
-        y={base - 2.2 * scale}
-        width={Math.abs(foot.toX - foot.fromX)}
-        height={2.2 * scale}
-      />
-    );
-  }
-  const height = 3.2 * scale;
-  // 35° from the upright.
-  const lean = height * 0.7;
-  const strokes: string[] = [];
-  for (let x = foot.toX + 5; x < foot.fromX; x += 3.4)
-    strokes.push(`M${x} ${base}l${lean} ${-height}`);
-  return <path className="strip-line" strokeWidth={1.5} d={strokes.join("")} />;
 }
 
 /** Half the width of a Mono figure of 15 px, px. */
@@ -469,115 +205,6 @@ function CardFigures({ props, geometry }: { props: DropStripProps; geometry: Str
           {active}
         </text>
       )}
-    </>
-  );
-}
-
-function WorkerStrip({
-  props,
-  geometry,
-  k,
-  named,
-}: {
-  props: DropStripProps;
-  geometry: StripGeometry;
-  k: number;
-  named: object;
-}) {
-  const { i18n } = useLingui();
-  const locale = useLocale();
-  const { bar, outer, inner, full, limits, boxHeight, width, dotted, chevrons } = geometry;
-  const limit = limits[0];
-  const above = 26;
-  const below = 28;
-  const innerMark = inner ?? full;
-  return (
-    // biome-ignore lint/a11y/noSvgWithoutTitle: named by stripLabel, or hidden
-    <svg
-      className="strip is-worker w-full"
-      viewBox={`0 ${-above} ${width} ${boxHeight + above + below}`}
-      style={{ maxWidth: width }}
-      {...named}
-    >
-      {bar && <WorkerArrow bar={bar} limitX={limit?.x ?? null} k={k} />}
-      <Halos geometry={geometry} />
-      <Limits geometry={{ ...geometry, limits: limit ? [limit] : [] }} />
-      <Marks
-        geometry={{
-          ...geometry,
-          whiskers: [],
-          caret: null,
-          foot: null,
-          ring: null,
-          dot: null,
-          link: null,
-          dotted,
-          chevrons,
-        }}
-        isExpected={props.isExpected}
-      />
-      {limit && (
-        <text
-          className="strip-worker-text"
-          x={limit.x}
-          y={-8}
-          textAnchor={outer && outer.x < limit.x ? "start" : "end"}
-          dx={outer && outer.x < limit.x ? -3 : 19}
-        >
-          {limit.label}
-        </text>
-      )}
-      {outer && props.outsideDb !== null && (
-        <text
-          className="strip-worker-text"
-          x={limit && outer.x >= limit.x ? Math.max(outer.x - 14, limit.x + 34) : outer.x}
-          y={-8}
-          textAnchor={limit && outer.x < limit.x ? "end" : "start"}
-        >
-          {i18n.t("around you")}{" "}
-          <tspan fontWeight={640}>{formatWholeLevel(props.outsideDb, locale)}</tspan>
-        </text>
-      )}
-      {innerMark && props.atEarDb !== null && (
-        <text className="strip-worker-text" x={Math.max(0, innerMark.x - 9)} y={boxHeight + 20}>
-          <tspan fontWeight={640}>{formatWholeLevel(props.atEarDb, locale)}</tspan>{" "}
-          {i18n.t("at your ear")}
-        </text>
-      )}
-    </svg>
-  );
-}
-
-/** A fall towards the ear: pale as far as the limit, full from there on. */
-function WorkerArrow({
-  bar,
-  limitX,
-  k,
-}: {
-  bar: NonNullable<StripGeometry["bar"]>;
-  limitX: number | null;
-  k: number;
-}) {
-  const length = bar.outerX - bar.innerX;
-  if (length <= 0) return <path className="strip-bar" d={barPath(bar)} />;
-  const headLength = Math.min(6.7 * k, length);
-  const neckX = bar.innerX + headLength;
-  const slope = (bar.outerY - bar.innerY) / length;
-  const yAt = (x: number) => bar.innerY + (x - bar.innerX) * slope;
-  const half = bar.thickness / 2;
-  const headHalf = (6.5 * headLength) / 6.7;
-  const splitX = limitX === null ? bar.outerX : Math.max(neckX, Math.min(bar.outerX, limitX));
-  const isPale = limitX !== null && bar.innerX > limitX;
-  const shaftX = isPale ? bar.outerX : splitX;
-  return (
-    <>
-      {!isPale && splitX < bar.outerX && (
-        <path className="strip-bar-pale" d={barPath(bar, bar.outerX, splitX)} />
-      )}
-      <path
-        className={isPale ? "strip-bar-pale" : "strip-bar"}
-        d={`M${shaftX} ${yAt(shaftX) - half}L${neckX} ${yAt(neckX) - half}L${neckX} ${yAt(neckX) - headHalf}L${bar.innerX} ${bar.innerY}L${neckX} ${yAt(neckX) + headHalf}L${neckX} ${yAt(neckX) + half}L${shaftX} ${yAt(shaftX) + half}Z`}
-      />
     </>
   );
 }

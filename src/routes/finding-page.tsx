@@ -2,12 +2,8 @@ import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { useState } from "react";
 import { useParams } from "react-router-dom";
-import {
-  noticedSentence,
-  orderSentence,
-  remedyFigure,
-  remedyOf,
-} from "../../shared/findings/sentences";
+import { remedyOf } from "../../shared/findings/facts";
+import { noticedSentence, orderSentence, remedyFigure } from "../../shared/findings/sentences";
 import { findingStateWord, findingWord } from "../../shared/findings/words";
 import { formatDate, formatInstant, formatShortDate } from "../../shared/format/date";
 import { formatLevel, formatLimit } from "../../shared/format/level";
@@ -279,6 +275,12 @@ function Steps({ finding }: { finding: FindingView }) {
   );
 }
 
+/** A reason that a person gave, or what the program itself closed it for. */
+function closingWords(i18n: ReturnType<typeof useLingui>["i18n"], reason: string | null): string {
+  if (reason === "calibrated") return `: ${i18n.t("the instrument was calibrated")}.`;
+  return reason === null || reason === "evidence-gone" ? "." : `: ${reason}`;
+}
+
 function toldWord(i18n: ReturnType<typeof useLingui>["i18n"], state: string): string {
   switch (state) {
     case "waiting":
@@ -329,9 +331,7 @@ function Margin({ finding }: { finding: FindingView }) {
         {finding.closedOn && (
           <p>
             {i18n.t("Closed {date}", { date: formatDate(finding.closedOn, locale) })}
-            {finding.closingReason && finding.closingReason !== "evidence-gone"
-              ? `: ${finding.closingReason}`
-              : "."}
+            {closingWords(i18n, finding.closingReason)}
           </p>
         )}
         {finding.previousId && (

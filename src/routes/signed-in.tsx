@@ -1,15 +1,12 @@
 import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
-import { useState } from "react";
+import { lazy, Suspense } from "react";
 import { Outlet, useLocation } from "react-router-dom";
 import type { RoleName, SessionUser } from "../../shared/schemas/session";
 import { ConnectionBanner } from "../components/connection-banner";
-import { LangSwitch } from "../components/lang-switch";
-import { TextButton } from "../components/link";
 import { type NavItem, Page, RunningHead } from "../components/page";
-import { SearchBox } from "../features/session/search-box";
-import { hasRole, keepLanguage, signOut, useUser } from "../features/session/session";
-import { chooseTheme, readTheme, type Theme } from "../lib/theme";
+import { AccountActions } from "../features/session/account-actions";
+import { hasRole, useUser } from "../features/session/session";
 import { paths } from "../paths";
 
 /** The pages of each role, those of several roles one after the other. */
@@ -44,53 +41,20 @@ function roleWord(i18n: I18n, roles: readonly RoleName[]): string {
   return i18n.t("worker");
 }
 
-function AccountActions() {
-  const { i18n } = useLingui();
-  return (
-    <>
-      <LangSwitch onChosen={(locale) => void keepLanguage(locale)} />
-      <TextButton onClick={() => void signOut()}>{i18n.t("Sign out")}</TextButton>
-    </>
-  );
-}
+/** For those who have them: a worker's page is without. */
+const SearchBox = lazy(() =>
+  import("../features/session/search-box").then(({ SearchBox }) => ({ default: SearchBox })),
+);
+const AccountMenu = lazy(() =>
+  import("../features/session/account-menu").then(({ AccountMenu }) => ({ default: AccountMenu })),
+);
 
-/** Who is signed in; opened, the language, light or dark, and the way out. */
-function AccountMenu({ name, role }: { name: string; role: string }) {
-  const { i18n } = useLingui();
-  const [theme, setTheme] = useState<Theme>(readTheme);
-  const themes: [Theme, string][] = [
-    ["system", i18n.t("As the device")],
-    ["light", i18n.t("Light")],
-    ["dark", i18n.t("Dark")],
-  ];
+/** Keeps the place of the search until it is there. */
+function SearchBoxFrame() {
   return (
-    <details className="account-menu">
-      <summary>
-        <b>
-          {name}, {role}
-        </b>
-      </summary>
-      <div className="account-menu-leaf">
-        <fieldset>
-          <legend>{i18n.t("Light or dark")}</legend>
-          {themes.map(([value, label]) => (
-            <label key={value}>
-              <input
-                type="radio"
-                name="theme"
-                checked={theme === value}
-                onChange={() => {
-                  chooseTheme(value);
-                  setTheme(value);
-                }}
-              />
-              {label}
-            </label>
-          ))}
-        </fieldset>
-        <AccountActions />
-      </div>
-    </details>
+    <div className="search-box" aria-hidden="true">
+      <input type="search" tabIndex={-1} readOnly />
+    </div>
   );
 }
 
@@ -101,6 +65,7 @@ export function SignedIn() {
   const items = useNavigation(user);
   const { pathname, search } = useLocation();
   const isPlain = items.length <= 1;
+  const whoAndWhat = `${user.name}, ${roleWord(i18n, user.roles)}`;
   return (
     <Page
       head={
@@ -113,7 +78,11 @@ export function SignedIn() {
             title={hasRole(user, "worker") && isPlain ? user.name : "Dinward"}
             account={
               <>
-                {hasRole(user, "officer", "auditor") && <SearchBox />}
+                {hasRole(user, "officer", "auditor") && (
+                  <Suspense fallback={<SearchBoxFrame />}>
+                    <SearchBox />
+                  </Suspense>
+                )}
                 {!isPlain && (
                   <span className="account-site">
                     {user.sites.length === 1 ? user.sites[0]?.name : user.organizationName}
@@ -123,7 +92,9 @@ export function SignedIn() {
                 {isPlain ? (
                   <AccountActions />
                 ) : (
-                  <AccountMenu name={user.name} role={roleWord(i18n, user.roles)} />
+                  <Suspense fallback={<b>{whoAndWhat}</b>}>
+                    <AccountMenu>{whoAndWhat}</AccountMenu>
+                  </Suspense>
                 )}
               </>
             }

@@ -1,19 +1,30 @@
 import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
+import { lazy, Suspense } from "react";
 import { ButtonLink } from "../components/button";
 import { Folio, MarginNote, PageBody, PageHead } from "../components/page";
 import { siteQueries } from "../features/sites-admin/queries";
 import { SitesTable } from "../features/sites-admin/sites-table";
 import { useEditParam } from "../lib/edit-param";
 import { paths } from "../paths";
-import { SiteFormPage } from "./site-form-page";
+import { Loading } from "./loading";
+
+/** With the forms, so that the list does not wait for them. */
+const SiteFormPage = lazy(() =>
+  import("./site-form-page").then(({ SiteFormPage }) => ({ default: SiteFormPage })),
+);
 
 /** The sites of the organization; a form stands in its place while one is changed. */
 export function Component() {
   const { i18n } = useLingui();
   const { editing, edit, close } = useEditParam();
   const sites = useQuery(siteQueries.list);
-  if (editing !== null) return <SiteFormPage id={editing} sites={sites} onClose={close} />;
+  if (editing !== null)
+    return (
+      <Suspense fallback={<Loading />}>
+        <SiteFormPage id={editing} sites={sites} onClose={close} />
+      </Suspense>
+    );
   return (
     <>
       <PageBody

@@ -1,7 +1,7 @@
 import { useLingui } from "@lingui/react";
 import { useState } from "react";
 import type { z } from "zod";
-import { protectorNames } from "../../../shared/findings/sentences";
+import { protectorNames } from "../../../shared/findings/facts";
 import { formatShortDate } from "../../../shared/format/date";
 import { AssignmentEnd, type AssignmentView } from "../../../shared/schemas/worker";
 import { Button } from "../../components/button";

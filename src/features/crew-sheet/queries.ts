@@ -1,24 +1,33 @@
 import { queryOptions, useMutation, useQueryClient } from "@tanstack/react-query";
-import { CrewList, type CrewSheetRow, CrewSheetView } from "../../../shared/schemas/crew";
-import { type FindingStepInput, FindingView } from "../../../shared/schemas/finding";
+import type { z } from "zod";
+import type { CrewList, CrewSheetRow, CrewSheetView } from "../../../shared/schemas/crew";
+import type { FindingStepInput, FindingView } from "../../../shared/schemas/finding";
 import { api } from "../../lib/api";
+import { ownReply } from "../../lib/own-reply";
+
+export const findingReply = ownReply<FindingView>("id", "state", "steps", "revision", "can");
 
 export const crewSheetQueries = {
   all: ["crew-sheet"] as const,
   crews: queryOptions({
     queryKey: ["crew-sheet", "crews"],
-    queryFn: ({ signal }) => api.get("/crews", { schema: CrewList, signal }),
+    queryFn: ({ signal }) =>
+      api.get("/crews", { schema: ownReply<z.infer<typeof CrewList>>("rows"), signal }),
     select: ({ rows }) => rows.filter(({ isArchived }) => !isArchived),
   }),
   sheet: (crewId: string) =>
     queryOptions({
       queryKey: ["crew-sheet", "of", crewId],
-      queryFn: ({ signal }) => api.get(`/crews/${crewId}/sheet`, { schema: CrewSheetView, signal }),
+      queryFn: ({ signal }) =>
+        api.get(`/crews/${crewId}/sheet`, {
+          schema: ownReply<CrewSheetView>("crew", "crews", "expected", "last"),
+          signal,
+        }),
     }),
   order: (findingId: string) =>
     queryOptions({
       queryKey: ["crew-sheet", "order", findingId],
-      queryFn: ({ signal }) => api.get(`/findings/${findingId}`, { schema: FindingView, signal }),
+      queryFn: ({ signal }) => api.get(`/findings/${findingId}`, { schema: findingReply, signal }),
     }),
 };
 
@@ -57,7 +66,7 @@ export function useOrderStep(crewId: string, findingId: string) {
         body: step,
         ifMatch: String(revision),
         idempotencyKey,
-        schema: FindingView,
+        schema: findingReply,
       }),
     onSuccess: (finding) => {
       client.setQueryData(crewSheetQueries.sheet(crewId).queryKey, (sheet) =>

@@ -1,9 +1,9 @@
 import { useLingui } from "@lingui/react";
 import { type ReactNode, useId, useState } from "react";
 import type { CrewSheetRow } from "../../../shared/schemas/crew";
-import type { StripFrame } from "../../components/day-figures";
 import { StripScale } from "../../components/drop-strip";
 import { TextButton } from "../../components/link";
+import type { StripFrame } from "../../components/strip-of-day";
 import { numberWord } from "./number-words";
 import type { PartName, SheetPart } from "./sheet-parts";
 import { SheetRow } from "./sheet-row";

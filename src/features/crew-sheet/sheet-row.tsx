@@ -1,20 +1,17 @@
 import { useLingui } from "@lingui/react";
+import { remedyOf } from "../../../shared/findings/facts";
 import { asReason, reasonText } from "../../../shared/findings/reasons";
-import {
-  noticedSentence,
-  orderSentence,
-  remedyFigure,
-  remedyOf,
-} from "../../../shared/findings/sentences";
+import { noticedSentence, orderSentence, remedyFigure } from "../../../shared/findings/sentences";
 import { findingWord } from "../../../shared/findings/words";
 import { formatLimit } from "../../../shared/format/level";
 import { withinSentence } from "../../../shared/format/words";
 import type { CrewSheetRow } from "../../../shared/schemas/crew";
 import type { DayFigures } from "../../../shared/schemas/finding";
-import { outsideVerdict, type StripFrame, stripOfDay } from "../../components/day-figures";
+import { outsideVerdict } from "../../components/day-figures";
 import { DropStrip } from "../../components/drop-strip";
 import { LevelFigure } from "../../components/level-figure";
 import { protectorWordText } from "../../components/protector-word";
+import { type StripFrame, stripOfDay } from "../../components/strip-of-day";
 import { Verdict } from "../../components/verdict";
 import { useLocale } from "../../lib/i18n";
 import { OrderActions } from "./order-actions";

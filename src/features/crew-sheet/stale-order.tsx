@@ -1,10 +1,10 @@
 import { useLingui } from "@lingui/react";
 import { findingStateWord } from "../../../shared/findings/words";
-import { FindingView } from "../../../shared/schemas/finding";
+import type { FindingView } from "../../../shared/schemas/finding";
 import { Button } from "../../components/button";
 import { Dialog } from "../../components/dialog";
 import { ApiError } from "../../lib/api";
-import type { OrderStep } from "./queries";
+import { findingReply, type OrderStep } from "./queries";
 
 /** The finding as it stands now, where a step was refused because somebody was quicker. */
 export function currentFinding(error: unknown): FindingView | null {
@@ -12,8 +12,11 @@ export function currentFinding(error: unknown): FindingView | null {
   const body: unknown = error.body;
   const current =
     typeof body === "object" && body !== null && "current" in body ? body.current : null;
-  const parsed = FindingView.safeParse(current);
-  return parsed.success ? parsed.data : null;
+  try {
+    return findingReply.parse(current);
+  } catch {
+    return null;
+  }
 }
 
 /** Both versions of an order and a choice: nothing is written over. */

@@ -7,21 +7,12 @@ import { withinSentence } from "../../../shared/format/words";
 import type { Locale } from "../../../shared/i18n/index";
 import type { DayFigures } from "../../../shared/schemas/finding";
 import type { GridRow as GridRowView } from "../../../shared/schemas/shift";
-import {
-  AtEarFigure,
-  OutsideFigure,
-  outsideVerdict,
-  type StripFrame,
-  stripOfDay,
-} from "../../components/day-figures";
-import {
-  DropStrip,
-  type DropStripProps,
-  StripGround,
-  stripLabel,
-} from "../../components/drop-strip";
+import { AtEarFigure, OutsideFigure, outsideVerdict } from "../../components/day-figures";
+import { DropStrip, type DropStripProps, StripGround } from "../../components/drop-strip";
 import { TextButton } from "../../components/link";
 import { ProtectorWord } from "../../components/protector-word";
+import { stripLabel } from "../../components/strip-label";
+import { type StripFrame, stripOfDay } from "../../components/strip-of-day";
 import { Verdict } from "../../components/verdict";
 import { useLocale } from "../../lib/i18n";
 import { type Cell, editText, numberIn, readingIn, unaccountedIn } from "./cells";

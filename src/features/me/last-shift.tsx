@@ -3,22 +3,17 @@ import { useLingui } from "@lingui/react";
 import { formatDay } from "../../../shared/format/date";
 import { formatLimit, formatWholeLevel } from "../../../shared/format/level";
 import type { Locale } from "../../../shared/i18n/index";
-import { type StripFrame, stripOfDay, useStripFrame } from "../../components/day-figures";
-import { DropStrip } from "../../components/drop-strip";
 import { Empty } from "../../components/empty";
+import { stripOfDay } from "../../components/strip-of-day";
+import { WorkerStrip } from "../../components/worker-strip";
 import { useLocale } from "../../lib/i18n";
 import { Emphasis } from "./emphasis";
+import { ownFrame } from "./own-frame";
 import type { OwnDay } from "./queries";
 
 /** The last shift in one sentence; what stands out is between asterisks. */
-export function lastShiftSentence(
-  i18n: I18n,
-  locale: Locale,
-  day: OwnDay,
-  frame: Pick<StripFrame, "limits" | "hasLimitAtEar">,
-): string {
-  const { atEarDb, outsideDb, uncertaintyDb } = day;
-  const [limit] = frame.limits;
+export function lastShiftSentence(i18n: I18n, locale: Locale, day: OwnDay): string {
+  const { atEarDb, outsideDb, uncertaintyDb, limit } = day;
   const values = {
     day: formatDay(day.date, locale),
     level: formatWholeLevel(atEarDb, locale),
@@ -27,7 +22,7 @@ export function lastShiftSentence(
     top: atEarDb === null ? "" : formatWholeLevel(atEarDb + (uncertaintyDb ?? 0), locale),
   };
   if (atEarDb === null || day.verdictAtEar === "not-assessed") {
-    if (atEarDb !== null && !frame.hasLimitAtEar) {
+    if (atEarDb !== null && !limit?.isAtEar) {
       if (day.word === "too-little")
         return i18n.t(
           "On {day} *{level} decibels* reached your ear. Your protector was too little for that.",
@@ -76,16 +71,15 @@ export function lastShiftSentence(
 export function LastShift({ day }: { day: OwnDay | null }) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  const frame = useStripFrame(day);
-  if (!day || !frame) return <Empty title={i18n.t("No shift of yours is recorded yet.")} />;
+  if (!day) return <Empty title={i18n.t("No shift of yours is recorded yet.")} />;
   return (
     <>
       <p>
-        <Emphasis text={lastShiftSentence(i18n, locale, day, frame)} />
+        <Emphasis text={lastShiftSentence(i18n, locale, day)} />
       </p>
       {(day.atEarDb !== null || day.outsideDb !== null) && (
         <div className="me-strip">
-          <DropStrip {...stripOfDay(day, frame)} variant="worker" />
+          <WorkerStrip {...stripOfDay(day, ownFrame(i18n, locale, day))} />
         </div>
       )}
       {day.isStale && (

@@ -2,7 +2,6 @@ import { useLingui } from "@lingui/react";
 import { useId, useState } from "react";
 import { formatMonth, formatShortDate } from "../../../shared/format/date";
 import { formatWholeLevel } from "../../../shared/format/level";
-import { useStripFrame } from "../../components/day-figures";
 import { Empty } from "../../components/empty";
 import { HistoryChart, type HistoryMark } from "../../components/history-chart";
 import { TextButton } from "../../components/link";
@@ -41,14 +40,14 @@ export function MyHistory({
   const listId = useId();
   const [showsList, setShowsList] = useState(false);
   const [rowCount, setRowCount] = useState(ROWS_AT_ONCE);
-  const frame = useStripFrame(days[0] ?? null);
   if (days.length === 0) return <Empty title={i18n.t("No shift of yours is recorded yet.")} />;
 
   const inOrder = days.map(({ date, atEarDb }) => ({ date, levelDb: atEarDb })).reverse();
   const first = inOrder[0]?.date ?? "";
   const isByWeek = daysBetween(first, inOrder.at(-1)?.date ?? first) > LONGEST_BY_DAY;
   const shown = isByWeek ? weeksOf(inOrder) : inOrder;
-  const limitDb = frame?.hasLimitAtEar ? (frame.limits[0]?.levelDb ?? null) : null;
+  const limit = days[0]?.limit;
+  const limitDb = limit?.isAtEar ? limit.levelDb : null;
   const over = shown
     .filter(({ levelDb }) => levelDb !== null && limitDb !== null && levelDb > limitDb)
     .sort((a, b) => (b.levelDb ?? 0) - (a.levelDb ?? 0));

@@ -27,6 +27,8 @@ const day = (facts: Partial<OwnDay> = {}): OwnDay => ({
   governingCriteria: [],
   shiftMin: 480,
   isStale: false,
+  limit: { levelDb: 87, isAtEar: true },
+  kindsOver: ["action"],
   ...facts,
 });
 const protector = (facts: Partial<OwnProtector> = {}): OwnProtector => ({

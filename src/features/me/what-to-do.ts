@@ -1,7 +1,7 @@
 import type { I18n } from "@lingui/core";
-import { protectorNames, workerSentence } from "../../../shared/findings/sentences";
+import { protectorNames } from "../../../shared/findings/facts";
+import { workerSentence } from "../../../shared/findings/worker-sentence";
 import type { Locale } from "../../../shared/i18n/index";
-import { ruleSetVersion } from "../../../shared/rule-sets";
 import type { FindingKind } from "../../../shared/schemas/finding";
 import { type OwnProtector, protectorOfDay } from "./own-protectors";
 import type { OwnDay } from "./queries";
@@ -33,13 +33,8 @@ function causeOf({
     taskName: lastDay.decidingTaskName,
     protector: worn && worn.outerName === null ? worn.innerName : null,
   };
-  const ruleSet = ruleSetVersion(lastDay.ruleSetKey, lastDay.ruleSetVersion);
   const isOver = (kinds: readonly string[]) =>
-    lastDay.governingCriteria.some(
-      ({ criterionId, verdict }) =>
-        verdict === "over" &&
-        kinds.includes(ruleSet?.criteria.find(({ id }) => id === criterionId)?.kind ?? ""),
-    );
+    lastDay.kindsOver.some((kind) => kinds.includes(kind));
   if (lastDay.word === "too-little") return { kind: "protects-too-little", facts };
   if (lastDay.verdictAtEar === "over")
     return { kind: "over-limit-at-ear", facts: { levelDb: lastDay.atEarDb } };

@@ -1,20 +1,24 @@
 import { queryOptions, useMutation, useQueryClient } from "@tanstack/react-query";
-import { SiteList } from "../../../shared/schemas/site";
-import { UserList, UserView } from "../../../shared/schemas/user";
-import { SignInCodeView, WorkerNameList } from "../../../shared/schemas/worker";
+import type { z } from "zod";
+import type { SiteList } from "../../../shared/schemas/site";
+import type { UserList, UserView } from "../../../shared/schemas/user";
+import type { SignInCodeView, WorkerNameList } from "../../../shared/schemas/worker";
 import type { Choice } from "../../components/form";
 import { api } from "../../lib/api";
+import { ownReply } from "../../lib/own-reply";
 
 export const peopleQueries = {
   all: ["people"] as const,
   list: queryOptions({
     queryKey: ["people", "list"],
-    queryFn: ({ signal }) => api.get("/users", { schema: UserList, signal }),
+    queryFn: ({ signal }) =>
+      api.get("/users", { schema: ownReply<z.infer<typeof UserList>>("rows"), signal }),
     select: ({ rows }) => rows,
   }),
   sites: queryOptions({
     queryKey: ["people", "sites"],
-    queryFn: ({ signal }) => api.get("/sites", { schema: SiteList, signal }),
+    queryFn: ({ signal }) =>
+      api.get("/sites", { schema: ownReply<z.infer<typeof SiteList>>("rows"), signal }),
     select: ({ rows }) => rows.map(({ id, name }) => ({ id, name })),
   }),
 };
@@ -27,7 +31,7 @@ export async function searchWorkers(
   if (search.trim() === "") return [];
   const { rows } = await api.get("/worker-names", {
     query: { search: search.trim() },
-    schema: WorkerNameList,
+    schema: ownReply<z.infer<typeof WorkerNameList>>("rows"),
     signal,
   });
   return rows.map(({ id, name, employeeNumber }) => ({
@@ -41,7 +45,11 @@ export function useEndAccess(id: string, onEnded: () => void) {
   const client = useQueryClient();
   return useMutation({
     mutationFn: (revision: number) =>
-      api.post(`/users/${id}/revoke`, { body: {}, ifMatch: String(revision), schema: UserView }),
+      api.post(`/users/${id}/revoke`, {
+        body: {},
+        ifMatch: String(revision),
+        schema: ownReply<UserView>("id", "revision"),
+      }),
     // Here and not where it is called: the list read anew takes the button away, and its callbacks with it.
     onSuccess: onEnded,
     onSettled: () => client.invalidateQueries({ queryKey: peopleQueries.all }),
@@ -51,6 +59,9 @@ export function useEndAccess(id: string, onEnded: () => void) {
 export function useIssueCode(workerId: string) {
   return useMutation({
     mutationFn: () =>
-      api.post(`/workers/${workerId}/sign-in-codes`, { body: {}, schema: SignInCodeView }),
+      api.post(`/workers/${workerId}/sign-in-codes`, {
+        body: {},
+        schema: ownReply<z.infer<typeof SignInCodeView>>("code", "expiresAt"),
+      }),
   });
 }

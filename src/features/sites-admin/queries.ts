@@ -1,12 +1,15 @@
 import { queryOptions } from "@tanstack/react-query";
-import { SiteList } from "../../../shared/schemas/site";
+import type { z } from "zod";
+import type { SiteList } from "../../../shared/schemas/site";
 import { api } from "../../lib/api";
+import { ownReply } from "../../lib/own-reply";
 
 export const siteQueries = {
   all: ["sites-admin"] as const,
   list: queryOptions({
     queryKey: ["sites-admin", "list"],
-    queryFn: ({ signal }) => api.get("/sites", { schema: SiteList, signal }),
+    queryFn: ({ signal }) =>
+      api.get("/sites", { schema: ownReply<z.infer<typeof SiteList>>("rows"), signal }),
     select: ({ rows }) => rows,
   }),
 };

@@ -7,13 +7,8 @@ import {
   useController,
   useFormState,
 } from "react-hook-form";
-import { RULE_SETS } from "../../../shared/rule-sets";
 import { Field } from "../../components/form";
-
-/** Each rule set once, whatever its versions. */
-export const ruleSetKeys = [
-  ...new Map(RULE_SETS.map((ruleSet) => [ruleSet.key, ruleSet])).values(),
-];
+import { ruleSetKeys } from "./rule-set-keys";
 
 /** Any number of rule sets that are computed beside the governing one. */
 export function RuleSetsField<Values extends FieldValues, Output>({

@@ -8,7 +8,8 @@ import { NewSiteInput, SiteInput, SiteView } from "../../../shared/schemas/site"
 import { CheckField, DateField, NumberField, SelectField } from "../../components/form";
 import { RecordForm } from "../../components/record-form";
 import { siteQueries } from "./queries";
-import { RuleSetsField, ruleSetKeys } from "./rule-sets-field";
+import { ruleSetKeys } from "./rule-set-keys";
+import { RuleSetsField } from "./rule-sets-field";
 import { SiteFields } from "./site-fields";
 
 const toSite = ({ name, timeZone, language, noticeDelayMin }: SiteView): SiteInput => ({

@@ -4,7 +4,7 @@ import type { SiteView } from "../../../shared/schemas/site";
 import { type DataColumn, DataTable } from "../../components/data-table";
 import { Empty } from "../../components/empty";
 import { TextButton } from "../../components/link";
-import { ruleSetKeys } from "./rule-sets-field";
+import { ruleSetKeys } from "./rule-set-keys";
 
 export function SitesTable({
   sites,

@@ -1,6 +1,8 @@
 import { infiniteQueryOptions } from "@tanstack/react-query";
-import { AuditEventPage } from "../../../shared/schemas/audit-event";
+import type { z } from "zod";
+import type { AuditEventPage } from "../../../shared/schemas/audit-event";
 import { api } from "../../lib/api";
+import { ownReply } from "../../lib/own-reply";
 
 export interface TrailFilter {
   readonly subjectKind: string | null;
@@ -13,7 +15,7 @@ export const trailQuery = (filter: TrailFilter) =>
     queryFn: ({ signal, pageParam }) =>
       api.get("/audit-events", {
         query: { ...filter, cursor: pageParam },
-        schema: AuditEventPage,
+        schema: ownReply<z.infer<typeof AuditEventPage>>("rows", "next"),
         signal,
       }),
     initialPageParam: null as string | null,

@@ -1,12 +1,8 @@
 import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { type ReactNode, useMemo } from "react";
-import {
-  noticedSentence,
-  orderSentence,
-  remedyFigure,
-  remedyOf,
-} from "../../../shared/findings/sentences";
+import { remedyOf } from "../../../shared/findings/facts";
+import { noticedSentence, orderSentence, remedyFigure } from "../../../shared/findings/sentences";
 import { findingStateWord, findingWord } from "../../../shared/findings/words";
 import { formatDayMonth, formatWeekday } from "../../../shared/format/date";
 import { withinSentence } from "../../../shared/format/words";

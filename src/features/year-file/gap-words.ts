@@ -1,6 +1,16 @@
 import type { I18n } from "@lingui/core";
 import type { Gap } from "./queries";
 
+const ALL: Readonly<Record<Gap, true>> = {
+  "not-measured": true,
+  "no-protector": true,
+  "notice-late": true,
+  "notice-not-sent": true,
+  "not-assessed": true,
+};
+/** In the order of the page. */
+export const GAPS = Object.keys(ALL) as readonly Gap[];
+
 export function gapWord(i18n: I18n, kind: Gap): string {
   switch (kind) {
     case "not-measured":

@@ -4,12 +4,12 @@ import { Fragment, useId, useState } from "react";
 import { asReason, reasonText } from "../../../shared/findings/reasons";
 import { formatShortDate } from "../../../shared/format/date";
 import { formatNumber } from "../../../shared/format/number";
-import { GapKind, type GapsView } from "../../../shared/schemas/waiting";
+import type { GapsView } from "../../../shared/schemas/waiting";
 import { Failed } from "../../components/failed";
 import { TextButton, TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
 import { paths } from "../../paths";
-import { gapMeaning, gapWord } from "./gap-words";
+import { GAPS, gapMeaning, gapWord } from "./gap-words";
 import { type Gap, type GapName, type YearOfSite, yearFileQueries } from "./queries";
 
 const NAMES_AT_ONCE = 40;
@@ -34,7 +34,7 @@ export function GapsTable({
       <table className="data-table gaps-table" aria-busy={counts === undefined}>
         <caption className="sr-only">{caption}</caption>
         <tbody>
-          {GapKind.options.map((kind) => {
+          {GAPS.map((kind) => {
             const count = counts?.find((one) => one.kind === kind)?.count;
             const isOpen = open === kind;
             return (

@@ -2,8 +2,8 @@ import { useLingui } from "@lingui/react";
 import { formatShortDate } from "../../../shared/format/date";
 import { formatLevel } from "../../../shared/format/level";
 import { formatNumber } from "../../../shared/format/number";
-import type { StripFrame } from "../../components/day-figures";
 import { DropStrip, StripGround, StripScale } from "../../components/drop-strip";
+import type { StripFrame } from "../../components/strip-of-day";
 import { useLocale } from "../../lib/i18n";
 import type { GapMonth } from "./queries";
 

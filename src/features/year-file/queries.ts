@@ -1,7 +1,8 @@
 import { queryOptions } from "@tanstack/react-query";
 import type { z } from "zod";
-import { type GapKind, GapNames, GapsView } from "../../../shared/schemas/waiting";
+import type { GapKind, GapNames, GapsView } from "../../../shared/schemas/waiting";
 import { ApiError, api } from "../../lib/api";
+import { ownReply } from "../../lib/own-reply";
 import { parseDictionary } from "./parse-dictionary";
 
 export type Gap = z.infer<typeof GapKind>;
@@ -20,13 +21,21 @@ export const yearFileQueries = {
     queryOptions({
       queryKey: ["year-file", "gaps", siteId, year],
       queryFn: ({ signal }) =>
-        api.get("/exports/gaps", { query: { siteId, year }, schema: GapsView, signal }),
+        api.get("/exports/gaps", {
+          query: { siteId, year },
+          schema: ownReply<GapsView>("counts", "months"),
+          signal,
+        }),
     }),
   names: ({ siteId, year }: YearOfSite, kind: Gap) =>
     queryOptions({
       queryKey: ["year-file", "names", siteId, year, kind],
       queryFn: ({ signal }) =>
-        api.get("/exports/gap-names", { query: { siteId, year, kind }, schema: GapNames, signal }),
+        api.get("/exports/gap-names", {
+          query: { siteId, year, kind },
+          schema: ownReply<z.infer<typeof GapNames>>("rows"),
+          signal,
+        }),
       select: ({ rows }) => rows,
     }),
   dictionary: queryOptions({

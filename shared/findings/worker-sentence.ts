@@ -1,0 +1,76 @@
+import type { I18n } from "@lingui/core";
+import { formatWholeLevel } from "../format/level";
+import type { Locale } from "../i18n/index";
+import type { FindingKind } from "../schemas/finding";
+import { type FindingFacts, numberOf, protectorNames, remedyOf, textOf } from "./facts";
+
+/** What to do, to the worker, in plain words and whole sentences. No word of the trade, no decimals. */
+export function workerSentence(
+  i18n: I18n,
+  locale: Locale,
+  kind: FindingKind,
+  facts: FindingFacts,
+): string {
+  const remedy = remedyOf(facts);
+  const task = textOf(facts, "taskName");
+  const protector = textOf(facts, "protector");
+  const ask = remedy
+    ? i18n.t("Ask your supervisor for {protector}.", {
+        protector: protectorNames(i18n, remedy.names),
+      })
+    : i18n.t("Ask your supervisor what to do before you work in noise again.");
+  switch (kind) {
+    case "over-limit-outside":
+      return i18n.t(
+        "It is very loud where you work. Keep your protector on all the time in noise.",
+      );
+    case "over-limit-at-ear": {
+      const levelDb = numberOf(facts, "levelDb");
+      return levelDb === null
+        ? i18n.t("Too much noise reached your ear. {ask}", { ask })
+        : i18n.t("About {level} decibels reached your ear; that is too much. {ask}", {
+            level: formatWholeLevel(levelDb, locale),
+            ask,
+          });
+    }
+    case "protects-too-little":
+      return protector
+        ? i18n.t("{protector} protects too little for your work. {ask}", { protector, ask })
+        : i18n.t("Your protector protects too little for your work. {ask}", { ask });
+    case "protects-too-much":
+      return protector
+        ? i18n.t("{protector} protects too much: you might miss a warning. {ask}", {
+            protector,
+            ask,
+          })
+        : i18n.t("Your protector protects too much: you might miss a warning. {ask}", { ask });
+    case "dual-protection":
+      return task
+        ? i18n.t("Wear two protectors in {task}: plugs, and a muff over them.", { task })
+        : i18n.t("Wear two protectors: plugs, and a muff over them.");
+    case "no-protector":
+      return i18n.t("You work in noise and have no protector yet. {ask}", { ask });
+    case "not-worn-long-enough":
+      return task
+        ? i18n.t("Keep your protector on the whole time in {task}. It was off for too long.", {
+            task,
+          })
+        : i18n.t("Keep your protector on the whole time in noise. It was off for too long.");
+    case "wearing-unknown":
+      return i18n.t("Tell your supervisor how long you wear your protector.");
+    case "peak-or-ceiling":
+      return i18n.t(
+        "There was a very loud bang or noise. Tell your supervisor where it comes from.",
+      );
+    case "time-not-accounted":
+      return i18n.t(
+        "Tell your supervisor what you did in the time that is missing from your shift.",
+      );
+    case "reading-gap":
+    case "reading-missing":
+    case "instrument":
+      return i18n.t("You need not do anything. Your safety officer is looking into a measurement.");
+    case "problem-reported":
+      return i18n.t("Your safety officer has your report and will talk to you.");
+  }
+}
