@@ -42,8 +42,8 @@ async function layOutCrew(db: pg.Client, organizationId: string): Promise<Crew> 
   return { crewId, siteId, members: rows };
 }
 
-/** Dates long before those of the scale data, one for each saving. */
-const dateOf = (index: number) => new Date(Date.UTC(2005, 0, 1 + index)).toISOString().slice(0, 10);
+/** Dates before those of the scale data, under rule sets that were in force by then; one for each saving. */
+const dateOf = (index: number) => new Date(Date.UTC(2015, 0, 1 + index)).toISOString().slice(0, 10);
 
 /** The rows that any way of saving the day has to write, set by set. */
 async function writeBare(

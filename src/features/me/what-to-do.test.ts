@@ -72,6 +72,12 @@ describe("what to do", () => {
     expect(say(day({ word: "too-little" }), [given])).toEqual(["Wear your Mallow foam in noise."]);
   });
 
+  test("a peak over its limit is told, by the kind that came with the day", () => {
+    expect(say(day({ kindsOver: ["action", "peak"] }), [protector()])[0]).toMatch(
+      /^There was a very loud bang or noise\./,
+    );
+  });
+
   test("in noise with nothing assigned; without noise nothing is needed", () => {
     const bare = { hasProtector: "no", word: null } as const;
     expect(say(day(bare), [])[0]).toMatch(/^You work in noise and have no protector yet\./);
