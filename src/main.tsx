@@ -1,11 +1,10 @@
 import { QueryClientProvider } from "@tanstack/react-query";
 import { StrictMode } from "react";
 import { createRoot } from "react-dom/client";
-import { RouterProvider } from "react-router-dom";
 import { LanguageProvider, startI18n } from "./lib/i18n";
 import { createQueryClient } from "./lib/query-client";
 import { applyTheme, readTheme } from "./lib/theme";
-import { createRouter } from "./router";
+import { createRoutes, Router } from "./router";
 import "./styles/tokens.css";
 
 async function start() {
@@ -14,11 +13,12 @@ async function start() {
   if (!root) throw new Error("The page has no #root");
   const i18n = await startI18n();
   const queryClient = createQueryClient();
+  const routes = createRoutes(queryClient, i18n);
   createRoot(root).render(
     <StrictMode>
       <LanguageProvider i18n={i18n}>
         <QueryClientProvider client={queryClient}>
-          <RouterProvider router={createRouter(queryClient, i18n)} />
+          <Router routes={routes} />
         </QueryClientProvider>
       </LanguageProvider>
     </StrictMode>,

@@ -6,9 +6,14 @@ import config from "../lingui.config";
 const root = resolve(import.meta.dirname, "..");
 const folder = join(root, "shared/i18n");
 
+const read = new Map<string, Map<string, string>>();
+
 /** Texts of a catalogue by id. */
 function readCatalogue(file: string): Map<string, string> {
+  const known = read.get(file);
+  if (known) return known;
   const texts = new Map<string, string>();
+  read.set(file, texts);
   const text = readFileSync(join(folder, file), "utf8");
   for (const [, id = "", message = ""] of text.matchAll(
     /^msgid ((?:"(?:[^"\\]|\\.)*"\n)+)msgstr ((?:"(?:[^"\\]|\\.)*"\n?)+)/gm,
@@ -97,7 +102,7 @@ describe("catalogues", () => {
     )) {
       const text = readFileSync(join(root, "src/routes", file), "utf8");
       for (const [, name = "", body = ""] of text.matchAll(
-        /export const (\w+): RouteObject\[\] = \[([\s\S]*?)\];/g,
+        /export const (\w+): PageRoute\[\] = \[([\s\S]*?)\];/g,
       )) {
         const loaded = new Set(["base", ...(groups.get(name) ?? [])]);
         for (const [, page = ""] of body.matchAll(/import\("\.\/([\w-]+)"\)/g)) {

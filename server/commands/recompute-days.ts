@@ -182,33 +182,48 @@ export const RESULT_COLUMNS = {
 
 const resultColumns = Object.keys(RESULT_COLUMNS).join(", ");
 const resultMembers = Object.values(RESULT_COLUMNS);
+const headMembers = resultMembers.filter(([name]) => name !== "criteria");
 
 async function storeResults(
   organizationId: string,
   computed: readonly ComputedDay[],
 ): Promise<Map<string, string>> {
   if (computed.length === 0) return new Map();
-  const records = computed.map(({ day, input, evaluation, governing, hash }) => ({
-    ...resultFacts(input, evaluation, governing),
-    workerId: day.workerId,
-    siteId: day.siteId,
-    hash,
-    refs: day.refs,
-  }));
-  const json = JSON.stringify(records);
-  await execute(
+  const records = computed.map(({ day, input, evaluation, governing, hash }) => {
+    const { criteria, ...facts } = resultFacts(input, evaluation, governing);
+    const { workerId, siteId, refs } = day;
+    return { head: { ...facts, workerId, siteId, hash }, criteria, refs };
+  });
+  // The two long members go beside the rest, a line each (JSON has no line break in it): the database takes them apart only once.
+  const added = await rows<DayKey & { id: string }>(
     `INSERT INTO day_results (organization_id, site_id, worker_id, date, origin, inputs_hash, refs, ${resultColumns})
-     SELECT $1, x."siteId", x."workerId", x.date, 'computed', decode(x.hash, 'hex'), x.refs, ${resultMembers.map(([name]) => `x."${name}"`).join(", ")}
-     FROM jsonb_to_recordset($2::jsonb) AS x("siteId" uuid, "workerId" uuid, date date, hash text, refs jsonb,
-       ${resultMembers.map(([name, type]) => `"${name}" ${type}`).join(", ")})
-     ON CONFLICT (worker_id, date, inputs_hash) DO NOTHING`,
-    [organizationId, json],
+     SELECT $1, x."siteId", x."workerId", x.date, 'computed', decode(x.hash, 'hex'), x.refs::jsonb, ${resultMembers.map(([name]) => (name === "criteria" ? "x.criteria::jsonb" : `x."${name}"`)).join(", ")}
+     FROM ROWS FROM (
+       jsonb_to_recordset($2::jsonb) AS ("siteId" uuid, "workerId" uuid, date date, hash text, ${headMembers.map(([name, type]) => `"${name}" ${type}`).join(", ")}),
+       string_to_table($3, chr(10)), string_to_table($4, chr(10))) AS x("siteId", "workerId", date, hash, ${headMembers.map(([name]) => `"${name}"`).join(", ")}, criteria, refs)
+     ON CONFLICT (worker_id, date, inputs_hash) DO NOTHING RETURNING worker_id AS "workerId", date::text AS date, id`,
+    [
+      organizationId,
+      JSON.stringify(records.map(({ head }) => head)),
+      records.map(({ criteria }) => JSON.stringify(criteria)).join("\n"),
+      records.map(({ refs }) => JSON.stringify(refs)).join("\n"),
+    ],
   );
-  const stored = await rows<DayKey & { id: string }>(
+  const isAdded = new Set(added.map(keyOf));
+  const known = records.flatMap(({ head: { workerId, date, hash } }) =>
+    isAdded.has(keyOf({ workerId, date })) ? [] : [{ workerId, date, hash }],
+  );
+  const stored = known.length === 0 ? added : [...added, ...(await storedResults(known))];
+  return new Map(stored.map((row) => [keyOf(row), row.id]));
+}
+
+async function storedResults(
+  known: readonly (DayKey & { hash: string })[],
+): Promise<(DayKey & { id: string })[]> {
+  return rows<DayKey & { id: string }>(
     `SELECT r.worker_id AS "workerId", r.date::text AS date, r.id
      FROM jsonb_to_recordset($1::jsonb) AS x("workerId" uuid, date date, hash text)
      JOIN day_results r ON r.worker_id = x."workerId" AND r.date = x.date AND r.inputs_hash = decode(x.hash, 'hex')`,
-    [JSON.stringify(records.map(({ workerId, date, hash }) => ({ workerId, date, hash })))],
+    [JSON.stringify(known)],
   );
-  return new Map(stored.map((row) => [keyOf(row), row.id]));
 }

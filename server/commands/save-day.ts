@@ -394,6 +394,7 @@ async function storeAbsences(
     if (issues.length > 0) refused.push({ index, workerId, issues });
     return issues.length === 0;
   });
+  if (stored.length === 0) return [];
   const ids = (isAbsent: boolean) =>
     stored.filter((one) => one.isAbsent === isAbsent).map(({ workerId }) => workerId);
   await execute(

@@ -64,12 +64,14 @@ export async function storeShifts(
      FROM jsonb_to_recordset($2::jsonb) ${columns} WHERE x."isNew"`,
     [actor.organizationId, heads],
   );
-  await execute(
-    `UPDATE shifts s SET local_start = x."localStart", length_min = x."lengthMin", starts_at = x."startsAt", ends_at = x."endsAt", is_void = x."isVoid",
+  if (records.some(({ isNew }) => !isNew)) {
+    await execute(
+      `UPDATE shifts s SET local_start = x."localStart", length_min = x."lengthMin", starts_at = x."startsAt", ends_at = x."endsAt", is_void = x."isVoid",
        revision = x.number, current_revision_id = x."revisionId"
      FROM jsonb_to_recordset($1::jsonb) ${columns} WHERE NOT x."isNew" AND s.id = x."shiftId" AND s.revision = x.number - 1`,
-    [heads],
-  );
+      [heads],
+    );
+  }
   const tasks = records.flatMap(({ shiftId, revisionId, tasks: ofShift }) =>
     ofShift.map((task, position) => ({ ...task, shiftId, revisionId, position })),
   );

@@ -1,7 +1,7 @@
-import type { RouteObject } from "react-router-dom";
 import { paths } from "../paths";
+import type { PageRoute } from "./page-route";
 
-export const dayRoutes: RouteObject[] = [
+export const dayRoutes: PageRoute[] = [
   { path: paths.days, lazy: () => import("./days-page") },
   { path: paths.day(":crewId", ":date"), lazy: () => import("./day-page") },
 ];

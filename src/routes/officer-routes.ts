@@ -1,12 +1,12 @@
-import type { RouteObject } from "react-router-dom";
 import { paths } from "../paths";
+import type { PageRoute } from "./page-route";
 
 /** Where an officer's day begins: apart, so that it loads no more than it needs. */
-export const waitingRoutes: RouteObject[] = [
+export const waitingRoutes: PageRoute[] = [
   { path: paths.waiting, lazy: () => import("./waiting-page") },
 ];
 
-export const officerRoutes: RouteObject[] = [
+export const officerRoutes: PageRoute[] = [
   { path: paths.findings, lazy: () => import("./findings-page") },
   { path: paths.finding(":id"), lazy: () => import("./finding-page") },
   { path: paths.workers, lazy: () => import("./workers-page") },

@@ -1,7 +1,7 @@
-import type { RouteObject } from "react-router-dom";
 import { paths } from "../paths";
+import type { PageRoute } from "./page-route";
 
-export const peopleRoutes: RouteObject[] = [
+export const peopleRoutes: PageRoute[] = [
   { path: paths.crewSheet, lazy: () => import("./crew-sheet-page") },
   { path: paths.crewSheetOf(":crewId"), lazy: () => import("./crew-sheet-page") },
   { path: paths.yearFile, lazy: () => import("./year-file-page") },

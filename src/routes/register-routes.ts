@@ -1,7 +1,7 @@
-import type { RouteObject } from "react-router-dom";
 import { paths } from "../paths";
+import type { PageRoute } from "./page-route";
 
-export const registerRoutes: RouteObject[] = [
+export const registerRoutes: PageRoute[] = [
   { path: paths.protectors, lazy: () => import("./protectors-page") },
   { path: paths.newProtector, lazy: () => import("./protector-form-page") },
   { path: paths.protector(":id"), lazy: () => import("./protector-page") },

@@ -1,5 +1,6 @@
 import { useLingui } from "@lingui/react";
-import { isRouteErrorResponse, useRouteError } from "react-router-dom";
+import { Component, type ReactNode } from "react";
+import { Outlet, useLocation } from "react-router-dom";
 import { Failed } from "../components/failed";
 import { TextLink } from "../components/link";
 import { Page, PageBody, PageHead, RunningHead } from "../components/page";
@@ -7,18 +8,12 @@ import { problemText } from "../lib/problem-text";
 import { paths } from "../paths";
 
 /** What stands in place of a page that broke: what happened, and what still holds. */
-export function RouteError() {
+function RouteError({ error }: { error: unknown }) {
   const { i18n } = useLingui();
-  const error = useRouteError();
-  const isMissing = isRouteErrorResponse(error) && error.status === 404;
   return (
     <Page head={<RunningHead />}>
       <PageBody>
-        <PageHead
-          title={
-            isMissing ? i18n.t("There is no such page") : i18n.t("This page could not be shown")
-          }
-        />
+        <PageHead title={i18n.t("This page could not be shown")} />
         <Failed onRetry={() => window.location.reload()}>{problemText(i18n, error)}</Failed>
         <p>
           <TextLink to={paths.home}>{i18n.t("To your first page")}</TextLink>
@@ -26,4 +21,32 @@ export function RouteError() {
       </PageBody>
     </Page>
   );
+}
+
+interface Caught {
+  readonly failed: { readonly error: unknown } | null;
+  readonly at: string;
+}
+
+class Boundary extends Component<{ at: string; children: ReactNode }, Caught> {
+  override state: Caught = { failed: null, at: this.props.at };
+
+  static getDerivedStateFromError(error: unknown): Partial<Caught> {
+    return { failed: { error } };
+  }
+
+  /** Another address is another try. */
+  static getDerivedStateFromProps({ at }: { at: string }, before: Caught): Caught | null {
+    return at === before.at ? null : { failed: null, at };
+  }
+
+  override render() {
+    const { failed } = this.state;
+    return failed ? <RouteError error={failed.error} /> : this.props.children;
+  }
+}
+
+/** Around everything, and around the pages behind the sign-in, so that their head stays. */
+export function RouteErrorBoundary({ children = <Outlet /> }: { children?: ReactNode }) {
+  return <Boundary at={useLocation().key}>{children}</Boundary>;
 }

@@ -1,12 +1,12 @@
 import { useLingui } from "@lingui/react";
-import { useMutation } from "@tanstack/react-query";
+import { useMutation, useQuery, useQueryClient } from "@tanstack/react-query";
 import { useState } from "react";
 import { formatTime } from "../../../shared/format/date";
 import type { EntryNotices as Notices } from "../../../shared/schemas/notice";
 import { NoticeLine, type NoticeLineState } from "../../components/notice-line";
 import { problemText } from "../../lib/problem-text";
 import { LookDialog } from "./dialogs";
-import { handleNotices } from "./queries";
+import { dayEntryQueries, handleNotices } from "./queries";
 
 const LINE: Readonly<Record<Notices["state"], NoticeLineState | null>> = {
   none: null,
@@ -16,9 +16,15 @@ const LINE: Readonly<Record<Notices["state"], NoticeLineState | null>> = {
   sent: "were-told",
 };
 
+/** Soon after their time the notices are gone; until then a look now and then is enough. */
+function askAgainMs(notices: Notices | undefined): number | false {
+  if (notices?.state !== "waiting" || notices.notBefore === null) return false;
+  return Date.parse(notices.notBefore) - Date.now() < 5_000 ? 2_000 : 30_000;
+}
+
 /** Before anybody is told: who and when, and time to look, to hold or to send. */
 export function EntryNotices({
-  notices,
+  notices: given,
   timeZone,
   onChange,
 }: {
@@ -28,9 +34,19 @@ export function EntryNotices({
 }) {
   const { i18n } = useLingui();
   const [isLooking, setIsLooking] = useState(false);
+  const client = useQueryClient();
+  const query = dayEntryQueries.notices(given.entryId);
+  const { data: notices = given } = useQuery({
+    ...query,
+    initialData: given,
+    refetchInterval: ({ state: { data } }) => askAgainMs(data),
+  });
   const handle = useMutation({
-    mutationFn: (action: "hold" | "send-now") => handleNotices(notices.entryId, action),
-    onSuccess: onChange,
+    mutationFn: (action: "hold" | "send-now") => handleNotices(given.entryId, action),
+    onSuccess: (next) => {
+      client.setQueryData(query.queryKey, next);
+      onChange(next);
+    },
   });
   const state = LINE[notices.state];
   if (!state || notices.people === 0) return null;
