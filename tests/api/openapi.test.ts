@@ -41,10 +41,10 @@ describe("GET /api/openapi.json", () => {
       expect(inPath.toSorted(), path).toEqual(
         [...path.matchAll(/:(\w+)/g)].map(([, name]) => name).toSorted(),
       );
-      if (spec.body)
-        expect(operation.requestBody?.content["application/json"]?.schema, path).toBeTypeOf(
-          "object",
-        );
+      if (spec.body) {
+        const kind = spec.upload ? "multipart/form-data" : "application/json";
+        expect(operation.requestBody?.content[kind]?.schema, path).toBeTypeOf("object");
+      }
       const names = operation.parameters.map(({ name }) => name);
       if (spec.needsRevision) expect(names, path).toContain("If-Match");
       if (method === "post" && !spec.storesNothing && spec.may !== "public")
