@@ -1,5 +1,5 @@
 import pg from "pg";
-import { afterAll, beforeAll, describe, expect, test } from "vitest";
+import { afterAll, beforeAll, describe, expect, inject, test } from "vitest";
 import { findFreePort, randomPort } from "../../scripts/lib/ports.mjs";
 import { type RunningApp, startApp } from "../setup/app";
 import { Visitor } from "../setup/visitor";
@@ -86,6 +86,20 @@ async function until<T>(ask: () => Promise<T | undefined>, what: string): Promis
   throw new Error(`waited in vain for ${what}`);
 }
 
+/** A notice whose time has come, without a job: what a process that died leaves behind. */
+async function leaveNotice(messageId: string): Promise<string> {
+  const noticeId = await ids(
+    `INSERT INTO notices (organization_id, site_id, recipient_id, entry_id, audience, state, not_before, message_id)
+     SELECT organization_id, site_id, recipient_id, gen_random_uuid(), 'officer', 'waiting', now() - interval '5 minutes', $1 FROM notices LIMIT 1 RETURNING id`,
+    [messageId],
+  );
+  await owner.query(
+    "INSERT INTO notice_items SELECT organization_id, $1, finding_id, worker_id, date, result_id FROM notice_items WHERE notice_id <> $1 LIMIT 1",
+    [noticeId],
+  );
+  return noticeId;
+}
+
 describe("two web and two work processes on one database", () => {
   test("the main job goes on across them: signed in at one, saved at the other, told once", async () => {
     const visitor = new Visitor();
@@ -153,14 +167,7 @@ describe("two web and two work processes on one database", () => {
     await visitor.signIn(`${app.url}/api/auth/sign-in`, officer.sub);
     app.work.signal("SIGKILL");
     await app.work.ended;
-    const noticeId = await ids(
-      `INSERT INTO notices (organization_id, site_id, recipient_id, entry_id, audience, state, not_before, message_id)
-       SELECT organization_id, site_id, recipient_id, gen_random_uuid(), 'officer', 'waiting', now() - interval '5 minutes', '<left-behind@dinward>' FROM notices LIMIT 1 RETURNING id`,
-    );
-    await owner.query(
-      `INSERT INTO notice_items SELECT organization_id, $1, finding_id, worker_id, date, result_id FROM notice_items WHERE notice_id <> $1 LIMIT 1`,
-      [noticeId],
-    );
+    await leaveNotice("<left-behind@dinward>");
     const mails = await until(async () => {
       const found = (await app.mailbox.mails({ to: officer.email })).filter(
         ({ messageId }) => messageId === "<left-behind@dinward>",
@@ -168,6 +175,32 @@ describe("two web and two work processes on one database", () => {
       return found.length > 0 ? found : undefined;
     }, "the mail left behind");
     expect(mails).toHaveLength(1);
+  });
+
+  test("the database drops every connection: a request says so and keeps nothing half, then all goes on", async () => {
+    const visitor = new Visitor();
+    await visitor.signIn(`${app.url}/api/auth/sign-in`, officer.sub);
+    const noticeId = await leaveNotice("<after-the-break@dinward>");
+    const superuser = new pg.Client(inject("database").superUrl);
+    await superuser.connect();
+    await superuser.query(
+      "SELECT pg_terminate_backend(pid) FROM pg_stat_activity WHERE usename = 'dinward_app' AND datname = $1",
+      [new URL(app.ownerUrl).pathname.slice(1)],
+    );
+    await superuser.end();
+    const answers = new Set<number>();
+    await until(async () => {
+      const { status } = await visitor.request(`${app.url}/api/findings`);
+      answers.add(status);
+      return status === 200 ? true : undefined;
+    }, "the web process to find its database again");
+    expect([...answers].every((status) => status === 200 || status === 503)).toBe(true);
+    expect(app.web.hasEnded()).toBe(false);
+    const state = await until(async () => {
+      const { rows } = await owner.query("SELECT state FROM notices WHERE id = $1", [noticeId]);
+      return rows[0].state === "sent" ? "sent" : undefined;
+    }, "the notice");
+    expect(state).toBe("sent");
   });
 
   test("SIGTERM lets requests end and releases jobs", async () => {
