@@ -10,7 +10,8 @@ import {
   useRoutes,
 } from "react-router-dom";
 import { addCatalogue, type CataloguePart, isLocale } from "../shared/i18n";
-import { sessionQuery, useUser } from "./features/session/session";
+import type { RoleName } from "../shared/schemas/session";
+import { hasRole, sessionQuery, useUser } from "./features/session/session";
 import { paths } from "./paths";
 import { dayRoutes } from "./routes/day-routes";
 import { homeOf } from "./routes/home";
@@ -49,6 +50,13 @@ const pageRoute = (path: string, load: LoadPage): RouteObject => {
   const loadOnce = once(load);
   return { path, handle: loadOnce, element: <LazyPage load={loadOnce} /> };
 };
+
+const loadNotFound = once(() => import("./routes/not-found"));
+
+/** Somebody else's page is not there: no frame with buttons that the server would refuse. */
+function Guarded({ roles, load }: { roles: readonly RoleName[]; load: LoadPage }) {
+  return <LazyPage load={hasRole(useUser(), ...roles) ? load : loadNotFound} />;
+}
 
 function Home() {
   return <Navigate to={homeOf(useUser())} replace />;
@@ -89,16 +97,18 @@ export function createRoutes(queryClient: QueryClient, i18n: I18n): RouteObject[
   const withWords = (
     parts: readonly CataloguePart[],
     pages: readonly PageRoute[],
+    roles: readonly RoleName[],
   ): RouteObject => ({
-    children: pages.map(({ path, lazy }) =>
-      pageRoute(path, async () => {
+    children: pages.map(({ path, lazy, roles: ofPage = roles }) => {
+      const load = once(async () => {
         const [page] = await Promise.all([
           lazy(),
           ...parts.map((part) => addCatalogue(i18n, part)),
         ]);
         return page;
-      }),
-    ),
+      });
+      return { path, handle: load, element: <Guarded roles={ofPage} load={load} /> };
+    }),
   });
 
   const routes: RouteObject[] = [
@@ -114,11 +124,15 @@ export function createRoutes(queryClient: QueryClient, i18n: I18n): RouteObject[
           element: <RouteErrorBoundary />,
           children: [
             pageRoute(paths.me, () => import("./routes/me-page")),
-            withWords(["office"], waitingRoutes),
-            withWords(["office", "rules"], officerRoutes),
-            withWords(["day", "rules"], dayRoutes),
-            withWords(["register", "office", "rules"], registerRoutes),
-            withWords(["people"], peopleRoutes),
+            withWords(["office"], waitingRoutes, ["officer"]),
+            withWords(["office", "rules"], officerRoutes, ["officer", "auditor", "supervisor"]),
+            withWords(["day", "rules"], dayRoutes, ["officer"]),
+            withWords(["register", "office", "rules"], registerRoutes, [
+              "officer",
+              "auditor",
+              "supervisor",
+            ]),
+            withWords(["people", "rules"], peopleRoutes, []),
             pageRoute("*", () => import("./routes/not-found")),
           ],
         },

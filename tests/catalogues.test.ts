@@ -91,7 +91,7 @@ describe("catalogues", () => {
   test("a page loads the words of everything it shows", () => {
     const router = readFileSync(join(root, "src/router.tsx"), "utf8");
     const groups = new Map(
-      [...router.matchAll(/withWords\(\[([^\]]+)\], (\w+)\)/g)].map(
+      [...router.matchAll(/withWords\(\s*\[([^\]]+)\],\s*(\w+),/g)].map(
         ([, loaded = "", name = ""]) => [name, loaded.match(/\w+/g) ?? []],
       ),
     );

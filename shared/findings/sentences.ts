@@ -35,7 +35,7 @@ export function orderSentence(
     case "over-limit-at-ear":
       return remedy
         ? giveRemedy(i18n, remedy)
-        : i18n.t("Shorten the time in noise; no one protector of the register fits the day");
+        : i18n.t("Find protectors that are enough in each task, or shorten the time in noise");
     case "protects-too-little":
       if (remedy) return giveRemedy(i18n, remedy);
       return task

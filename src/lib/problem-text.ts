@@ -15,7 +15,7 @@ function codeText(i18n: I18n, code: string, params: Params): string | null {
     case "csrf":
       return i18n.t("This page is out of date. Load it again and repeat the last step.");
     case "forbidden":
-      return i18n.t("You may see this, but not change it.");
+      return i18n.t("This is not yours to do. Nothing was changed.");
     case "own-grant":
       return i18n.t("You can’t change your own roles. Ask another administrator.");
     case "not-found":

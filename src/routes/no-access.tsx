@@ -35,7 +35,7 @@ export function Component() {
         <PageHead
           title={i18n.t("You have no access here yet")}
           lead={i18n.t(
-            "{name}, your sign-in is known, but nobody has given you a role in Dinward. Ask your safety officer or your administrator.",
+            "{name}, your sign-in is known, but it opens nothing in Dinward: nobody has given you a role, or the sign-in service does not call your e-mail verified. Ask your safety officer or your administrator.",
             { name: data?.pendingName ?? i18n.t("Hello") },
           )}
         />

@@ -2,11 +2,19 @@ import { paths } from "../paths";
 import type { PageRoute } from "./page-route";
 
 export const peopleRoutes: PageRoute[] = [
-  { path: paths.crewSheet, lazy: () => import("./crew-sheet-page") },
-  { path: paths.crewSheetOf(":crewId"), lazy: () => import("./crew-sheet-page") },
-  { path: paths.yearFile, lazy: () => import("./year-file-page") },
-  { path: paths.trail, lazy: () => import("./trail-page") },
-  { path: paths.people, lazy: () => import("./people-page") },
-  { path: paths.person(":id"), lazy: () => import("./person-page") },
-  { path: paths.sites, lazy: () => import("./sites-page") },
+  {
+    path: paths.crewSheet,
+    lazy: () => import("./crew-sheet-page"),
+    roles: ["supervisor", "officer", "auditor"],
+  },
+  {
+    path: paths.crewSheetOf(":crewId"),
+    lazy: () => import("./crew-sheet-page"),
+    roles: ["supervisor", "officer", "auditor"],
+  },
+  { path: paths.yearFile, lazy: () => import("./year-file-page"), roles: ["auditor", "officer"] },
+  { path: paths.trail, lazy: () => import("./trail-page"), roles: ["auditor", "administrator"] },
+  { path: paths.people, lazy: () => import("./people-page"), roles: ["administrator"] },
+  { path: paths.person(":id"), lazy: () => import("./person-page"), roles: ["administrator"] },
+  { path: paths.sites, lazy: () => import("./sites-page"), roles: ["administrator"] },
 ];

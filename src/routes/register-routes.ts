@@ -3,7 +3,7 @@ import type { PageRoute } from "./page-route";
 
 export const registerRoutes: PageRoute[] = [
   { path: paths.protectors, lazy: () => import("./protectors-page") },
-  { path: paths.newProtector, lazy: () => import("./protector-form-page") },
+  { path: paths.newProtector, lazy: () => import("./protector-form-page"), roles: ["officer"] },
   { path: paths.protector(":id"), lazy: () => import("./protector-page") },
   { path: paths.tasks, lazy: () => import("./tasks-page") },
   { path: paths.task(":id"), lazy: () => import("./task-page") },
@@ -14,5 +14,5 @@ export const registerRoutes: PageRoute[] = [
   { path: paths.crews, lazy: () => import("./crews-page") },
   { path: paths.crew(":id"), lazy: () => import("./crew-page") },
   { path: paths.instruments, lazy: () => import("./instruments-page") },
-  { path: paths.imports, lazy: () => import("./import-page") },
+  { path: paths.imports, lazy: () => import("./import-page"), roles: ["officer"] },
 ];

@@ -2,6 +2,7 @@ import type { I18n } from "@lingui/core";
 import type { Verdict } from "../../../shared/acoustics/types";
 import { formatDay } from "../../../shared/format/date";
 import type { Locale } from "../../../shared/i18n/index";
+import { ruleSetVersion } from "../../../shared/rule-sets";
 import type { CrewSheetRow, CrewSheetView } from "../../../shared/schemas/crew";
 import type { DayFigures, FindingKind } from "../../../shared/schemas/finding";
 import { capital, numberWord } from "./number-words";
@@ -26,14 +27,27 @@ const ABOUT_THE_PAST: ReadonlySet<FindingKind> = new Set([
 ]);
 
 /**
- * What the sheet says of a recorded day: its verdict at the ear. Where the rule has no limit there, a protector that
- * protects too little is what stands in for Over.
+ * What the sheet says of a recorded day: its verdict at the ear. Where the rule has no limit there, its limits without
+ * protection decide, and a protector that protects too little stands in for Over.
  */
 export function sheetVerdict(figures: DayFigures, hasLimitAtEar: boolean): Verdict {
   if (hasLimitAtEar) return figures.verdictAtEar;
-  if (figures.word === "too-little") return "over";
+  if (figures.word === "too-little" || isOverLimitOutside(figures)) return "over";
   if (figures.hasProtector === "no") return figures.verdictOutside;
   return figures.word === null ? "not-assessed" : "under";
+}
+
+/** A limit of the governing rule, and not only its action value, is passed without protection. */
+function isOverLimitOutside({
+  ruleSetKey,
+  ruleSetVersion: version,
+  governingCriteria,
+}: DayFigures): boolean {
+  const limits =
+    ruleSetVersion(ruleSetKey, version)?.criteria.filter(({ kind }) => kind === "limit") ?? [];
+  return governingCriteria.some(
+    ({ criterionId, verdict }) => verdict === "over" && limits.some(({ id }) => id === criterionId),
+  );
 }
 
 export const isOpenOrder = ({ order }: CrewSheetRow): boolean =>

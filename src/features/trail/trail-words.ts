@@ -75,6 +75,10 @@ export function actionWord(i18n: I18n, action: string): string {
       return i18n.t("Protector assigned");
     case "end-assignment":
       return i18n.t("Assignment ended");
+    case "sign-in":
+      return i18n.t("Signed in");
+    case "bind-sign-in":
+      return i18n.t("Signed in for the first time");
     case "bind-worker-sign-in":
       return i18n.t("Sign-in bound with a code");
     case "issue-sign-in-code":

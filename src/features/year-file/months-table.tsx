@@ -1,7 +1,7 @@
 import { useLingui } from "@lingui/react";
 import { formatShortDate } from "../../../shared/format/date";
 import { formatLevel } from "../../../shared/format/level";
-import { formatNumber } from "../../../shared/format/number";
+import { formatNumber, NO_FIGURE } from "../../../shared/format/number";
 import { DropStrip, StripGround, StripScale } from "../../components/drop-strip";
 import type { StripFrame } from "../../components/strip-of-day";
 import { useLocale } from "../../lib/i18n";
@@ -38,6 +38,8 @@ const ENDS: ReadonlySet<CountName> = new Set([
 ]);
 const STRIP_PX = 200;
 
+const AT_EAR: ReadonlySet<CountName> = new Set<CountName>(["over", "cantTell", "notAssessed"]);
+
 const cellOf = (name: CountName) => `is-figure${ENDS.has(name) ? " ends-group" : ""}`;
 
 /** A year by months: days, verdicts, and the medians as a strip. */
@@ -65,6 +67,9 @@ export function MonthsTable({
   const count = (value: number) =>
     value === 0 ? <span className="is-zero">0</span> : formatNumber(value, 0, locale);
   const [limit] = limits;
+  // Where the rule has no limit at the ear there is nothing to count: that is not zero.
+  const figure = (name: CountName, value: number) =>
+    AT_EAR.has(name) && frame?.hasLimitAtEar === false ? NO_FIGURE : count(value);
   return (
     <div className="table-frame">
       <section
@@ -145,7 +150,7 @@ export function MonthsTable({
                 </th>
                 {COUNTS.map((name) => (
                   <td key={name} className={cellOf(name)}>
-                    {count(month[name])}
+                    {figure(name, month[name])}
                   </td>
                 ))}
                 <td className="is-figure is-strong">{formatLevel(month.medianAtEarDb, locale)}</td>
@@ -173,7 +178,7 @@ export function MonthsTable({
                 </th>
                 {COUNTS.map((name) => (
                   <td key={name} className={cellOf(name)}>
-                    {count(sum(name))}
+                    {figure(name, sum(name))}
                   </td>
                 ))}
                 <td colSpan={3} />
