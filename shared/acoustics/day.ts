@@ -6,6 +6,7 @@ import {
   type ExchangeLaw,
   isSameLaw,
   lawOf,
+  leastWeight,
   levelFactor,
   levelOfWeight,
 } from "./exchange-law";
@@ -88,7 +89,7 @@ export function evaluateDay(
     word: protector.word,
     decidingTaskId: protector.decidingTaskId,
     protectorReason: protector.reason,
-    sharesPct: sharesPct(input),
+    sharesPct: sharesPct(input, law),
     tasksDb,
     readingGapDb:
       tasksDb === null || outsideResult.levelDb === null ? null : outsideResult.levelDb - tasksDb,
@@ -418,22 +419,23 @@ function keptReasons(input: DayInput): readonly string[] {
 
 const NONE: readonly string[] = [];
 
-/** Each task's share in the day's energy, percent; quiet time has the rest. */
-function sharesPct(input: DayInput): Record<string, number> {
+/** Each task's share in what the governing law adds up, percent; quiet time has the rest. */
+function sharesPct(input: DayInput, law: ExchangeLaw): Record<string, number> {
+  const weight = (levelDb: number) => leastWeight({ kind: "steady" }, levelDb, law);
   const shares: Record<string, number> = {};
   let total = 0;
   for (const shift of input.shifts) {
     for (const { id, durationMin, level } of shift.tasks) {
       if (level === null) continue;
-      const energy = durationMin * 10 ** (level.levelDb / 10);
-      shares[id] = energy;
-      total += energy;
+      const amount = durationMin * weight(level.levelDb);
+      shares[id] = amount;
+      total += amount;
     }
     if (shift.unaccounted.how === "quiet") {
-      total += unaccountedMin(shift) * 10 ** (shift.unaccounted.levelDb / 10);
+      total += unaccountedMin(shift) * weight(shift.unaccounted.levelDb);
     }
   }
-  for (const id in shares) shares[id] = (100 * shares[id]!) / total;
+  for (const id in shares) shares[id] = total === 0 ? 0 : (100 * shares[id]!) / total;
   return shares;
 }
 

@@ -385,7 +385,7 @@ export interface DayEvaluation {
   readonly word: ProtectorWord | null;
   readonly decidingTaskId: string | null;
   readonly protectorReason: Reason | null;
-  /** Energy shares of the tasks in the outside level, percent, by timed task id. */
+  /** Shares of the tasks in the outside level under the governing exchange rate, percent, by timed task id. */
   readonly sharesPct: Readonly<Record<string, number>>;
   /** Level by tasks beside a governing reading, and reading − tasks, dB. */
   readonly tasksDb: number | null;

@@ -63,7 +63,7 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
     case "not_multiple_of":
       return i18n.t("Only whole steps count here.");
     case "ambiguous":
-      return i18n.t("This can be read in two ways. Write the decimals with {mark}.", {
+      return i18n.t("This can be read in two ways. Write decimals with a “{mark}”", {
         mark: i18n.locale === "de" ? "," : ".",
       });
     case "not-a-number":

@@ -214,7 +214,9 @@ function Evidence({ finding }: { finding: FindingView }) {
           <Empty title={i18n.t("No day stands behind this finding.")}>
             {finding.kind === "problem-reported"
               ? i18n.t("The worker reported it.")
-              : i18n.t("The days that showed it were corrected.")}
+              : finding.kind === "instrument"
+                ? i18n.t("It is about the instrument, not about a day.")
+                : i18n.t("The days that showed it were corrected.")}
           </Empty>
         }
       />

@@ -57,7 +57,7 @@ interface Seen {
 
 /**
  * The whole day at the ear. A protector counts in the tasks of its use that reach the site's wear-from level or lie in
- * a zone; all other time counts bare. No threshold acts under a protector.
+ * a zone; all other time counts bare, as it does without protection. No threshold acts under a protector.
  *
  * Where no protector counts at all, the ear has what the workplace has, threshold and all.
  *
@@ -75,7 +75,8 @@ export function evaluateAtEar(
   if (!day.shifts.some((shift) => shift.tasks.some((task) => countsAsWorn(task, day)))) {
     return bareDay(day, outside);
   }
-  const law: ExchangeLaw = { ...outsideLaw, thresholdDb: null, table: null };
+  const bareLaw: ExchangeLaw = { ...outsideLaw, table: null };
+  const law: ExchangeLaw = { ...bareLaw, thresholdDb: null };
   const tasks: TaskAtEar[] = [];
   const creditedTaskIds = new Set<string>();
   const off = new Adder();
@@ -106,13 +107,17 @@ export function evaluateAtEar(
     const powered = poweredShare(batteryMin, activeWornMin);
     if (powered === null) isBatteryUnknown = true;
 
-    const scale = scaleOf(shift, law, outsideLaw);
+    const scale = scaleOf(shift, day, law, outsideLaw);
     for (const { task, off: offFactor, on: onFactor, atEar, isCredited } of seen) {
       const { level } = task;
       if (level === null || task.durationMin === 0) continue;
       const minutes = task.durationMin * scale.factor;
-      const least = scale.isByReading ? weightOf(level.levelDb, law) : leastAtEar(level, law);
-      const most = scale.isByReading ? least : mostAtEar(level, law);
+      // Bare, the ear has what the workplace has, threshold and all.
+      const lawHere = atEar.isWorn ? law : bareLaw;
+      const least = scale.isByReading
+        ? steadyWeight(level.levelDb, lawHere)
+        : leastAtEar(level, lawHere);
+      const most = scale.isByReading ? least : mostAtEar(level, lawHere);
       const worn = atEar.isWorn ? (task.wornPct === null ? null : task.wornPct / 100) : 0;
       const mixed =
         onFactor === null || offFactor === null || powered === null
@@ -124,7 +129,9 @@ export function evaluateAtEar(
       judged.add(minutes, least, most, worn, isCredited ? (mixed ?? offFactor) : offFactor);
       fullyWorn.add(minutes, least, most, atEar.isWorn ? 1 : 0, offFactor);
     }
-    for (const adder of [off, on, asWorked, judged, fullyWorn]) adder.closeShift(shift, scale, law);
+    for (const adder of [off, on, asWorked, judged, fullyWorn]) {
+      adder.closeShift(shift, scale, bareLaw);
+    }
   }
   return {
     tasks,
@@ -172,7 +179,12 @@ interface Scale {
   readonly missing: Reason | null;
 }
 
-function scaleOf(shift: ShiftInput, law: ExchangeLaw, outsideLaw: ExchangeLaw): Scale {
+function scaleOf(
+  shift: ShiftInput,
+  day: DayInput,
+  law: ExchangeLaw,
+  outsideLaw: ExchangeLaw,
+): Scale {
   const missing =
     missingTime(shift) ??
     (shift.tasks.some(({ level, durationMin }) => level === null && durationMin > 0)
@@ -182,9 +194,12 @@ function scaleOf(shift: ShiftInput, law: ExchangeLaw, outsideLaw: ExchangeLaw): 
   const reading = shift.readings.length > 0 ? governingReading(shift, outsideLaw) : undefined;
   if (!reading) return { isByReading: false, readingSum: 0, factor: likeness, missing };
   const readingSum = sumReading(reading, shift, { ...law, table: null });
-  let tasksSum = quietSum(shift, law);
-  for (const { level, durationMin } of shift.tasks) {
-    if (level) tasksSum += durationMin * likeness * weightOf(level.levelDb, law);
+  const bareLaw: ExchangeLaw = { ...outsideLaw, table: null };
+  let tasksSum = quietSum(shift, bareLaw);
+  for (const task of shift.tasks) {
+    const { level, durationMin } = task;
+    const lawHere = countsAsWorn(task, day) ? law : bareLaw;
+    if (level) tasksSum += durationMin * likeness * steadyWeight(level.levelDb, lawHere);
   }
   return {
     isByReading: true,
@@ -194,9 +209,14 @@ function scaleOf(shift: ShiftInput, law: ExchangeLaw, outsideLaw: ExchangeLaw): 
   };
 }
 
+/** What a minute at a level weighs, as if it hardly moved. */
+function steadyWeight(levelDb: number, law: ExchangeLaw): number {
+  return leastWeight({ kind: "steady" }, levelDb, law);
+}
+
 function quietSum(shift: ShiftInput, law: ExchangeLaw): number {
   return shift.unaccounted.how === "quiet"
-    ? unaccountedMin(shift) * weightOf(shift.unaccounted.levelDb, law)
+    ? unaccountedMin(shift) * steadyWeight(shift.unaccounted.levelDb, law)
     : 0;
 }
 

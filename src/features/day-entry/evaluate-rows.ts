@@ -539,7 +539,8 @@ export function withoutProtector(
   const [loudest] = [...worn].sort((a, b) => (b.outsideDb ?? 0) - (a.outsideDb ?? 0));
   const timed = input.shifts.flatMap((shift) => shift.tasks);
   const task = timed.find(({ id }) => id === loudest?.timedTaskId);
-  if (!task || task.wornPct === null) return null;
+  // A task shorter than that can't be bare for so long.
+  if (!task || task.wornPct === null || task.durationMin < minutes) return null;
   const wornPct = Math.max(0, task.wornPct - (100 * minutes) / task.durationMin);
   const { governing } = rulesOf(view);
   const changed: DayInput = {

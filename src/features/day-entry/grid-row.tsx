@@ -325,7 +325,7 @@ function WornContent({ found, cell, isFilled = false, locale }: ContentProps) {
       <span className="two-lines">
         <Filled isFilled={isOwnFilled}>{editNumber(lowest.sharePct, locale)}</Filled>
         <span className="under clip">
-          {own.length > 1 ? i18n.t("lowest of {count}", { count: own.length }) : i18n.t("one task")}
+          {own.length > 1 ? i18n.t("several") : i18n.t("one task")}
         </span>
       </span>
     );
