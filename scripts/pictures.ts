@@ -44,9 +44,15 @@ const dayPath: Shot["path"] = async (ask) => {
 };
 const resultPath: Shot["path"] = async (ask) => {
   const { findings } = (await ask("/waiting")) as {
-    findings: { worker: { id: string } | null; figures: { date: string } | null }[];
+    findings: {
+      worker: { id: string } | null;
+      figures: { date: string; atEarDb: number | null; uncertaintyDb: number | null } | null;
+    }[];
   };
-  const found = findings.find(({ worker, figures }) => worker && figures);
+  const found = findings.find(
+    ({ worker, figures }) =>
+      worker && figures?.atEarDb && figures.uncertaintyDb && figures.atEarDb < 90,
+  );
   return `/workers/${found?.worker?.id}/days/${found?.figures?.date}`;
 };
 
