@@ -1,8 +1,8 @@
 import { randomUUID } from "node:crypto";
 import type { ProblemIssue } from "../../shared/schemas/problem";
 import type { AssignmentInput } from "../../shared/schemas/worker";
+import { addDays } from "../../shared/time/zone";
 import { recordAudit } from "../lib/audit";
-import { addDays } from "../lib/calendar";
 import { daysFromTo, spanIssues } from "../lib/date-range";
 import { execute, rows } from "../lib/db";
 import { issue, notFound, unprocessable } from "../lib/errors";

@@ -1,5 +1,5 @@
+import { addDays } from "../../shared/time/zone";
 import { recordAudit } from "../lib/audit";
-import { addDays } from "../lib/calendar";
 import { checkSpan, daysFromTo } from "../lib/date-range";
 import { execute } from "../lib/db";
 import type { Actor } from "../lib/policy";

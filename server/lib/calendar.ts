@@ -1,17 +1,9 @@
-import { localDateOf } from "../../shared/format/date";
 import type { ProblemIssue } from "../../shared/schemas/problem";
+import { addDays, localDate } from "../../shared/time/zone";
 import { issue } from "./errors";
 
 /** The date that a site's clock shows now. */
-export const todayAt = (timeZone: string): string =>
-  localDateOf(new Date().toISOString(), timeZone);
-
-/** Calendar days later; dates have no zone. */
-export function addDays(isoDate: string, days: number): string {
-  return new Date(Date.parse(`${isoDate}T00:00:00Z`) + days * 86_400_000)
-    .toISOString()
-    .slice(0, 10);
-}
+export const todayAt = (timeZone: string): string => localDate(new Date(), timeZone);
 
 const earliest = "1950-01-01";
 

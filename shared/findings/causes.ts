@@ -8,7 +8,7 @@ import type {
   TaskAtEar,
   TimedTask,
 } from "../acoustics/types";
-import { actionValueDb } from "../rule-sets";
+import { actionValueDb, levelOf } from "../rule-sets";
 import type { FindingKind } from "../schemas/finding";
 
 /** Something a day shows that a person must act on. One open finding per worker (or group), kind, criterion and use. */
@@ -68,7 +68,7 @@ export function findCauses(
     const facts = {
       levelDb: result.levelDb,
       dosePct: result.dosePct,
-      valueDb: criterion.levelDb ?? criterion.value,
+      valueDb: levelOf(criterion),
     };
     if (criterion.kind === "peak" || criterion.kind === "ceiling")
       add("peak-or-ceiling", { ...facts, what: criterion.kind }, about);
@@ -188,10 +188,7 @@ function isProtectionOwed(own: readonly CriterionResult[], governing: RuleSetVer
       return false;
     if (criterion.quantity === "peak" || criterion.quantity === "slow-maximum") return false;
     if (criterion.kind === "limit") return true;
-    return (
-      criterion.kind === "action" &&
-      (target === null || (criterion.levelDb ?? criterion.value) >= target)
-    );
+    return criterion.kind === "action" && (target === null || levelOf(criterion) >= target);
   });
 }
 
