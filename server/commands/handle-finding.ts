@@ -1,6 +1,6 @@
 import type { FindingState, FindingStepInput } from "../../shared/schemas/finding";
-import { localDate } from "../../shared/time/zone";
 import { recordAudit } from "../lib/audit";
+import { todayAt } from "../lib/calendar";
 import { execute, row } from "../lib/db";
 import { AppError, stale } from "../lib/errors";
 import type { Actor } from "../lib/policy";
@@ -61,7 +61,7 @@ export async function handleFinding(
       actor.userId,
       input.kind === "take-in-hand" ? input.dueOn : null,
       closes,
-      localDate(new Date(), site?.timeZone ?? "UTC"),
+      todayAt(site?.timeZone ?? "UTC"),
       text,
     ],
   );

@@ -1,5 +1,5 @@
-import { localDate } from "../../shared/time/zone";
 import { recordAudit } from "../lib/audit";
+import { todayAt } from "../lib/calendar";
 import { execute, row } from "../lib/db";
 import type { Actor } from "../lib/policy";
 import type { Worker } from "../models/worker";
@@ -10,7 +10,7 @@ export async function reportProblem(actor: Actor, worker: Worker, text: string):
     `SELECT time_zone AS "timeZone" FROM sites WHERE id = :id`,
     { id: worker.siteId },
   );
-  const today = localDate(new Date(), site?.timeZone ?? "UTC");
+  const today = todayAt(site?.timeZone ?? "UTC");
   const open = await row<{ id: string }>(
     "SELECT id FROM findings WHERE worker_id = :id AND kind = 'problem-reported' AND state <> 'closed' FOR UPDATE",
     { id: worker.id },

@@ -6,8 +6,9 @@ import {
   type DaySaveView,
   type WorkedRowInput,
 } from "../../shared/schemas/shift";
-import { addDays, localDate } from "../../shared/time/zone";
+import { addDays } from "../../shared/time/zone";
 import { recordAuditMany } from "../lib/audit";
+import { todayAt } from "../lib/calendar";
 import { execute, row, rows } from "../lib/db";
 import { AppError, issue } from "../lib/errors";
 import { groupBy } from "../lib/group-by";
@@ -65,7 +66,7 @@ export async function saveDay(
     { id: crew.siteId },
   );
   if (!site) throw new AppError("not-found", 404);
-  const today = localDate(new Date(), site.timeZone);
+  const today = todayAt(site.timeZone);
   const refused: DaySaveView["refused"] = [];
   const conflicts: DaySaveView["conflicts"] = [];
   const worked: Candidate[] = [];

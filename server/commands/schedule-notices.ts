@@ -1,6 +1,7 @@
 import { randomUUID } from "node:crypto";
 import { NOTIFIED_KINDS } from "../../shared/findings/notified";
-import { addDays, localDate } from "../../shared/time/zone";
+import { addDays } from "../../shared/time/zone";
+import { todayAt } from "../lib/calendar";
 import { execute, row, rows } from "../lib/db";
 import { addJob } from "../lib/jobs";
 import type { Actor } from "../lib/policy";
@@ -41,7 +42,7 @@ export async function scheduleNotices({
   );
   if (!site) return;
   const notBefore = new Date(Date.now() + site.delayMin * 60_000);
-  const oldest = addDays(localDate(new Date(), site.timeZone), -NEWS_FOR_DAYS);
+  const oldest = addDays(todayAt(site.timeZone), -NEWS_FOR_DAYS);
   const days = changedDays(recomputed);
   const earlier = await statesOfNotices(days);
   if (earlier.some((state) => unsent.has(state))) await withdrawUnsent(days);

@@ -6,9 +6,9 @@ import { headline } from "../../shared/day/summarize-day";
 import { ruleSetInForce } from "../../shared/rule-sets";
 import { LevelDb } from "../../shared/schemas/common";
 import { GradeName } from "../../shared/schemas/evaluation";
-import { localDate } from "../../shared/time/zone";
 import { employmentIssues, futureIssues, lockWorkers } from "../commands/check-shift";
 import { canonicalJson } from "../lib/audit";
+import { todayAt } from "../lib/calendar";
 import { execute, rows } from "../lib/db";
 import type { Actor } from "../lib/policy";
 import type { Site } from "../models/site";
@@ -55,7 +55,7 @@ export async function draftPastResults(
     site.id,
     file.lines.map(({ cells: of }) => of.get("employee_number") ?? ""),
   );
-  const today = localDate(new Date(), site.timeZone);
+  const today = todayAt(site.timeZone);
   const seen = new Map<string, number>();
   const days = file.lines.flatMap((line): PastDay[] => {
     const before = cells.issues.length;

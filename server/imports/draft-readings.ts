@@ -1,8 +1,8 @@
 import type { ProblemIssue } from "../../shared/schemas/problem";
 import { type RunInput, RunInput as RunSchema } from "../../shared/schemas/run";
-import { localDate } from "../../shared/time/zone";
 import { employmentIssues, futureIssues, lockWorkers } from "../commands/check-shift";
 import { recordRun } from "../commands/record-run";
+import { todayAt } from "../lib/calendar";
 import { rows } from "../lib/db";
 import { groupBy } from "../lib/group-by";
 import type { Actor } from "../lib/policy";
@@ -82,7 +82,7 @@ export async function draftReadings(actor: Actor, site: Site, file: CsvFile): Pr
     shifts.map(({ id, workerId, date, start }) => [`${workerId} ${date} ${start}`, id]),
   );
   const recorded = await recordedRuns(workerIds);
-  const today = localDate(new Date(), site.timeZone);
+  const today = todayAt(site.timeZone);
 
   const runs: RunInput[] = [];
   const days: { workerId: string; date: string }[] = [];

@@ -1,7 +1,7 @@
 import type { Unaccounted } from "../../shared/acoustics/types";
 import type { ProblemIssue } from "../../shared/schemas/problem";
 import { checkShiftFacts, ShiftFacts } from "../../shared/schemas/shift";
-import { addDays, localDate } from "../../shared/time/zone";
+import { addDays } from "../../shared/time/zone";
 import {
   employmentIssues,
   futureIssues,
@@ -13,6 +13,7 @@ import {
   wholeDayIssues,
 } from "../commands/check-shift";
 import { type CheckedShift, storeShifts } from "../commands/store-shifts";
+import { todayAt } from "../lib/calendar";
 import { groupBy } from "../lib/group-by";
 import type { Actor } from "../lib/policy";
 import type { Site } from "../models/site";
@@ -84,7 +85,7 @@ export async function draftShifts(
   );
   const taskIds = await idsByName("tasks", site.id);
   const crewIds = await idsByName("crews", site.id);
-  const today = localDate(new Date(), site.timeZone);
+  const today = todayAt(site.timeZone);
   const known = new Set(taskIds.values());
 
   const drafts = groups.flatMap((lines): Draft[] => {

@@ -5,7 +5,7 @@ import { summarizeDay } from "../../shared/day/summarize-day";
 import { ruleSetVersion } from "../../shared/rule-sets";
 import type { CrewSheetRow, CrewSheetView } from "../../shared/schemas/crew";
 import type { FindingKind, FindingState } from "../../shared/schemas/finding";
-import { localDate } from "../../shared/time/zone";
+import { todayAt } from "../lib/calendar";
 import { row, rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
 import type { Crew } from "../models/worker";
@@ -43,7 +43,7 @@ export async function crewSheet(actor: Actor, crew: Crew): Promise<z.input<typeo
     { id: crew.siteId },
   );
   const timeZone = site?.timeZone ?? "UTC";
-  const today = localDate(new Date(), timeZone);
+  const today = todayAt(timeZone);
   const settings = await settingsInForce(crew.siteId, today);
   const members = await crewMembers(crew.id, today);
   const orders = await openOrders(

@@ -1,6 +1,6 @@
 import type { TaskLevel, Unaccounted } from "../../shared/acoustics/types";
 import type { DayGridView, GridRow, ShiftTaskInput } from "../../shared/schemas/shift";
-import { localDate } from "../../shared/time/zone";
+import { todayAt } from "../lib/calendar";
 import { row, rows } from "../lib/db";
 import type { Crew } from "../models/worker";
 import { dayFiguresOf } from "./day-figures";
@@ -79,7 +79,7 @@ export async function dayGrid(crew: Crew, date: string): Promise<DayGridView> {
       timeZone: site?.timeZone ?? "UTC",
     },
     date,
-    today: localDate(new Date(), site?.timeZone ?? "UTC"),
+    today: todayAt(site?.timeZone ?? "UTC"),
     settings: {
       governingRuleSet: settings.governingRuleSet,
       ruleSetVersion: settings.ruleSetVersion,

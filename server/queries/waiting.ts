@@ -1,6 +1,6 @@
 import type { z } from "zod";
 import type { WaitingView } from "../../shared/schemas/waiting";
-import { localDate } from "../../shared/time/zone";
+import { todayAt } from "../lib/calendar";
 import { rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
 import { crewPolicy, noticePolicy, programmePolicy, sitePolicy } from "../policies";
@@ -31,7 +31,7 @@ export async function waitingFor(
   );
   const days = sites.map(({ id, timeZone }) => ({
     siteId: id,
-    date: localDate(new Date(), timeZone),
+    date: todayAt(timeZone),
   }));
   const crews = await rows<CrewRow>(
     `SELECT c.id, c.name, c.site_id AS "siteId", s.time_zone AS "timeZone", x.date::text AS date, to_char(c.usual_start, 'HH24:MI') AS start, c.usual_length_min AS "lengthMin",
@@ -63,7 +63,7 @@ export async function waitingFor(
     { siteId },
   );
   return {
-    today: days[0]?.date ?? localDate(new Date(), "UTC"),
+    today: days[0]?.date ?? todayAt("UTC"),
     crews,
     findings: findings.rows.filter(({ state }) => state !== "done"),
     next: findings.next,

@@ -1,10 +1,10 @@
 import { randomUUID } from "node:crypto";
 import { IdParams } from "../../shared/schemas/common";
 import { RunCorrection, RunFilter, RunInput, RunPage, RunView } from "../../shared/schemas/run";
-import { localDate } from "../../shared/time/zone";
 import { recomputeDays } from "../commands/recompute-days";
 import { correctRun, recordRun } from "../commands/record-run";
 import { scheduleNotices } from "../commands/schedule-notices";
+import { todayAt } from "../lib/calendar";
 import { execute, row } from "../lib/db";
 import { endpoint } from "../lib/endpoint";
 import { forbidden, issue, stale, unprocessable } from "../lib/errors";
@@ -67,7 +67,7 @@ export function defineRunRoutes(): void {
         `SELECT time_zone AS "timeZone" FROM sites WHERE id = :id`,
         { id: worker.siteId },
       );
-      const today = localDate(new Date(), site?.timeZone ?? "UTC");
+      const today = todayAt(site?.timeZone ?? "UTC");
       if (body.date > today) throw unprocessable([issue(["date"], "in-the-future", { today })]);
       if (body.date < worker.hiredOn)
         throw unprocessable([issue(["date"], "before-hire", { hiredOn: worker.hiredOn })]);
