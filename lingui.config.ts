@@ -65,6 +65,22 @@ const parts: Record<string, string[]> = {
     ),
     ...pages("crew-page", "crews-page", "instruments-page", "import-page", "register-frame"),
   ],
+  measuring: [
+    ...features("surveys", "outings", "histories", "recordings", "groups"),
+    ...pages(
+      "to-measure-page",
+      "workplace-changes-page",
+      "survey*-page",
+      "field-sheet-page",
+      "sample-page",
+      "out-and-back-page",
+      "histor*-page",
+      "recording*-page",
+      "group-page",
+      "instrument-page",
+      "measuring-frame",
+    ),
+  ],
   mail: ["server/**"],
 };
 

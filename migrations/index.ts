@@ -3,6 +3,16 @@ import { peopleAndWork } from "./20261201090100-people-and-work";
 import { evidence } from "./20261201090200-evidence";
 import { resultsAndFindings } from "./20261201090300-results-and-findings";
 import { indexes } from "./20261201090400-indexes";
+import { measurements } from "./20261201100000-measurements";
+import { rulesChangedSteps } from "./20261201110000-rules-changed-steps";
 
 /** In the order in which they run. */
-export const migrations = [foundation, peopleAndWork, evidence, resultsAndFindings, indexes];
+export const migrations = [
+  foundation,
+  peopleAndWork,
+  evidence,
+  resultsAndFindings,
+  indexes,
+  measurements,
+  rulesChangedSteps,
+];

@@ -11,6 +11,7 @@ import type { Config } from "./config";
 import { sequelize } from "./lib/db";
 import { mountRoutes, routes } from "./lib/endpoint";
 import { AppError, fromDatabase, isDatabaseDown } from "./lib/errors";
+import { openFileStore } from "./lib/file-store";
 import { describeError, type Log } from "./lib/log";
 import { pendingMigrations } from "./lib/migrator";
 import { buildOpenApi } from "./lib/open-api";
@@ -29,6 +30,7 @@ export function createApp(
 ): Express {
   const app = express();
   const provider = new Provider(config);
+  openFileStore(config.DATA_DIR);
   app.disable("x-powered-by");
   app.set("trust proxy", config.TRUST_PROXY);
 

@@ -7,6 +7,7 @@ import { recomputeStaleDays } from "./jobs/recompute-stale-days";
 import { sendNotice } from "./jobs/send-notice";
 import { sealEvents } from "./lib/audit";
 import { connect, inTransaction, organizationIds, sequelize } from "./lib/db";
+import { openFileStore } from "./lib/file-store";
 import type { JobPayloads } from "./lib/jobs";
 import { createLog, describeError } from "./lib/log";
 import { Mailer } from "./lib/mailer";
@@ -16,6 +17,7 @@ import { defineModels } from "./models";
 const config = configOrExit("work");
 const log = createLog(config.LOG_LEVEL);
 defineModels(connect(config.DATABASE_URL, { application: "dinward work" }));
+openFileStore(config.DATA_DIR);
 const mailer = new Mailer(config.SMTP_URL, config.MAIL_FROM);
 let isStopping = false;
 

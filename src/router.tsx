@@ -16,6 +16,7 @@ import { paths } from "./paths";
 import { dayRoutes } from "./routes/day-routes";
 import { homeOf } from "./routes/home";
 import { Loading } from "./routes/loading";
+import { measuringRoutes } from "./routes/measuring-routes";
 import { officerRoutes, waitingRoutes } from "./routes/officer-routes";
 import type { PageRoute } from "./routes/page-route";
 import { peopleRoutes } from "./routes/people-routes";
@@ -132,6 +133,7 @@ export function createRoutes(queryClient: QueryClient, i18n: I18n): RouteObject[
               "auditor",
               "supervisor",
             ]),
+            withWords(["measuring", "office", "rules"], measuringRoutes, ["officer", "auditor"]),
             withWords(["people", "rules"], peopleRoutes, []),
             pageRoute("*", () => import("./routes/not-found")),
           ],

@@ -5,6 +5,7 @@ import { loadActor } from "../auth/actor";
 import { canonicalJson } from "./audit";
 import { execute, inTransaction, row } from "./db";
 import { AppError, forbidden, fromDatabase, unprocessable } from "./errors";
+import { dropStaged, type StagedFile } from "./file-store";
 import type { Actor } from "./policy";
 import { readUpload } from "./upload";
 
@@ -34,8 +35,11 @@ export interface RouteSpec<
   storesNothing?: boolean;
   /** The answer is shown once and never stored: a repeated key is refused instead of answered again. */
   isReplySecret?: boolean;
-  /** A form with one file, read only once the caller may call; the body's schema gets its fields and the file's facts. */
-  upload?: { limitBytes: number };
+  /**
+   * A form with one file, read only once the caller may call; the body's schema gets its fields and the file's facts. Small
+   * ones are read into memory, the others into the file store's staging, from where the handler keeps them.
+   */
+  upload?: { limitBytes: number; toStore?: boolean };
   /** The handler writes the answer itself, outside any transaction of the request. */
   streams?: boolean;
 }
@@ -47,6 +51,8 @@ export interface Call<P extends Schema, Q extends Schema, B extends Schema> {
   body: Output<B>;
   /** The revision named in If-Match; 0 where the route does not ask for one. */
   ifMatch: number;
+  /** A file that came in and is dropped unless the handler keeps it; null where the route takes none. */
+  staged: StagedFile | null;
   request: Request;
   response: Response;
 }
@@ -185,6 +191,20 @@ function authorizeRoute(spec: RouteSpec, actor: Actor): void {
 }
 
 async function handle(route: Route, request: Request, response: Response): Promise<void> {
+  const uploaded: { staged: StagedFile | null } = { staged: null };
+  try {
+    await answer(route, request, response, uploaded);
+  } finally {
+    if (uploaded.staged) await dropStaged(uploaded.staged);
+  }
+}
+
+async function answer(
+  route: Route,
+  request: Request,
+  response: Response,
+  uploaded: { staged: StagedFile | null },
+): Promise<void> {
   const { spec } = route;
   const run = async (actor: Actor | null) => {
     const call = {
@@ -193,6 +213,7 @@ async function handle(route: Route, request: Request, response: Response): Promi
       query: parse(spec.query, request.query),
       body: parse(spec.body, request.body),
       ifMatch: spec.needsRevision ? readIfMatch(request) : 0,
+      staged: uploaded.staged,
       request,
       response,
     };
@@ -219,9 +240,9 @@ async function handle(route: Route, request: Request, response: Response): Promi
     await inTransaction({ organizationId, readOnly: true }, async () =>
       authorizeRoute(spec, await loadActor(userId, epoch)),
     );
-    await readUpload(request, response, spec.upload.limitBytes);
+    uploaded.staged = await readUpload(request, response, spec.upload);
   }
-  const answer = await inTransaction(
+  const answered = await inTransaction(
     { organizationId, readOnly: readMethods.has(route.method) },
     async () => {
       const actor = await loadActor(userId, epoch);
@@ -239,7 +260,7 @@ async function handle(route: Route, request: Request, response: Response): Promi
         : work();
     },
   );
-  send(response, answer.status, answer.reply);
+  send(response, answered.status, answered.reply);
 }
 
 function send(response: Response, status: number, reply: unknown): void {

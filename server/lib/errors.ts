@@ -48,6 +48,12 @@ const constraints: Record<string, () => AppError> = {
   shifts_overlap: () => new AppError("shifts-overlap", 409),
   assignments_overlap: () => new AppError("assignments-overlap", 409),
   crew_memberships_overlap: () => new AppError("membership-overlaps", 409),
+  runs_overlap: () => new AppError("instruments-overlap", 409),
+  runs_one_out: () => new AppError("instruments-overlap", 409),
+  time_histories_overlap: () => new AppError("instruments-overlap", 409),
+  instrument_reservations_overlap: () =>
+    unprocessable([issue(["reservations"], "instrument-reserved-already")]),
+  time_histories_file: () => new AppError("same-file", 409),
   crew_supervisors_overlap: () => new AppError("membership-overlaps", 409),
   shift_tasks_fit: () => unprocessable([issue(["tasks"], "tasks-longer-than-shift")]),
   last_administrator: () => new AppError("last-administrator", 409),

@@ -5,6 +5,9 @@ export interface JobPayloads {
   "recompute-days": { organizationId: string };
   "send-notice": { organizationId: string; noticeId: string };
   "look-after": Record<string, never>;
+  /** Reads a time history's file: a report, and once it is ordered the levels. */
+  "read-history": { organizationId: string; importId: string };
+  "analyse-recording": { organizationId: string; recordingId: string };
 }
 export type JobName = keyof JobPayloads;
 

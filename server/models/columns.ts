@@ -22,5 +22,6 @@ export const dayOrNull = () => ({ type: DataTypes.DATEONLY, allowNull: true });
 export const instant = () => ({ type: DataTypes.DATE, allowNull: false });
 export const instantOrNull = () => ({ type: DataTypes.DATE, allowNull: true });
 export const json = () => ({ type: DataTypes.JSONB, allowNull: false });
+export const jsonOrNull = () => ({ type: DataTypes.JSONB, allowNull: true });
 /** Counts up with every change; If-Match is held against it. */
 export const revision = () => ({ type: DataTypes.INTEGER, allowNull: false, defaultValue: 1 });

@@ -4,6 +4,7 @@ import { defineInstrumentModels } from "./instrument";
 import { defineProtectorModels } from "./protector";
 import { defineShiftModels } from "./shift";
 import { defineSiteModels } from "./site";
+import { defineSurveyModels } from "./survey";
 import { defineTaskModels } from "./task";
 import { defineUserModels } from "./user";
 import { defineWorkerModels } from "./worker";
@@ -17,4 +18,5 @@ export function defineModels(sequelize: Sequelize): void {
   defineInstrumentModels(sequelize);
   defineShiftModels(sequelize);
   defineFindingModels(sequelize);
+  defineSurveyModels(sequelize);
 }

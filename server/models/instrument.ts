@@ -35,7 +35,12 @@ export class Run extends Model<InferAttributes<Run>, InferCreationAttributes<Run
   declare workerId: CreationOptional<string | null>;
   declare areaId: CreationOptional<string | null>;
   declare shiftId: CreationOptional<string | null>;
+  declare surveyId: CreationOptional<string | null>;
+  declare taskId: CreationOptional<string | null>;
+  declare place: CreationOptional<string | null>;
   declare date: string;
+  /** Not back yet: no duration, no reading. */
+  declare isOut: CreationOptional<boolean>;
   declare isVoid: CreationOptional<boolean>;
   declare revision: CreationOptional<number>;
   declare currentRevisionId: string;
@@ -67,7 +72,11 @@ export function defineInstrumentModels(sequelize: Sequelize): void {
       workerId: column.uuidOrNull(),
       areaId: column.uuidOrNull(),
       shiftId: column.uuidOrNull(),
+      surveyId: column.uuidOrNull(),
+      taskId: column.uuidOrNull(),
+      place: column.textOrNull(),
       date: column.day(),
+      isOut: column.flag(),
       isVoid: column.flag(),
       revision: column.revision(),
       currentRevisionId: column.uuid(),

@@ -28,6 +28,18 @@ export const sitePolicy = policy<{ id: string }>()({
   },
 });
 
+/** Surveys and the register of changes: the officer's work, the auditor's to read. */
+export const surveyPolicy = policy<AtSite>()({
+  sees: (actor, s) => [actor.at(`${s}.site_id`, "officer", "auditor")],
+  can: { change: officerAt, adopt: officerAt },
+});
+
+/** Time histories, files on their way in and recordings. A worker's own history is the worker's to read as a result. */
+export const historyPolicy = policy<AtSite>()({
+  sees: (actor, h) => [actor.at(`${h}.site_id`, "officer", "auditor")],
+  can: { change: officerAt },
+});
+
 /** Areas, tasks, jobs and instruments describe the programme, not a person. */
 export const programmePolicy = policy<AtSite>()({
   sees: (actor, t) => [actor.at(`${t}.site_id`, "officer", "auditor", "supervisor")],
@@ -137,12 +149,30 @@ export const userPolicy = policy<{ id: string }>()({
   },
 });
 
+const tableOfSubject = {
+  area: "areas",
+  task: "tasks",
+  job: "jobs",
+  crew: "crews",
+  worker: "workers",
+  instrument: "instruments",
+  shift: "shifts",
+  run: "runs",
+  finding: "findings",
+  notice: "notices",
+  survey: "surveys",
+  "workplace-change": "workplace_changes",
+  "history-import": "history_imports",
+  "time-history": "time_histories",
+  recording: "recordings",
+};
+
 /** The site an event is about, by its subject. */
 const siteOfEvent = (e: string) => `(CASE ${e}.subject_kind WHEN 'site' THEN ${e}.subject_id
-  ${["area", "task", "job", "crew", "worker", "instrument", "shift", "run", "finding", "notice"]
+  ${Object.entries(tableOfSubject)
     .map(
-      (kind) =>
-        `WHEN '${kind}' THEN (SELECT x.site_id FROM ${kind}s x WHERE x.id = ${e}.subject_id)`,
+      ([kind, table]) =>
+        `WHEN '${kind}' THEN (SELECT x.site_id FROM ${table} x WHERE x.id = ${e}.subject_id)`,
     )
     .join(" ")} END)`;
 

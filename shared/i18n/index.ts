@@ -27,6 +27,7 @@ export const CATALOGUE_PARTS = [
   "rules",
   "day",
   "register",
+  "measuring",
   "mail",
 ] as const;
 export type CataloguePart = (typeof CATALOGUE_PARTS)[number];
@@ -41,6 +42,7 @@ const CATALOGUES: Readonly<
   rules: { en: () => import("./rules-en"), de: () => import("./rules-de") },
   day: { en: () => import("./day-en"), de: () => import("./day-de") },
   register: { en: () => import("./register-en"), de: () => import("./register-de") },
+  measuring: { en: () => import("./measuring-en"), de: () => import("./measuring-de") },
   mail: { en: () => import("./mail-en"), de: () => import("./mail-de") },
 };
 

@@ -40,6 +40,10 @@ export const PROBLEM_CODES = [
   "own-grant",
   "nothing-to-do",
   "import-refused",
+  "quota-exceeded",
+  "instruments-overlap",
+  "same-file",
+  "wrong-state",
   "draining",
 ] as const;
 export type ProblemCode = (typeof PROBLEM_CODES)[number];

@@ -67,6 +67,16 @@ function codeText(i18n: I18n, code: string, params: Params): string | null {
       return i18n.t("There is nothing to do here.");
     case "import-refused":
       return i18n.t("Nothing was imported. The report names each line.");
+    case "quota-exceeded":
+      return i18n.t(
+        "There is no room left for files. Delete recordings that are no longer needed.",
+      );
+    case "instruments-overlap":
+      return i18n.t("The instrument was somewhere else at that time. Look at its other runs.");
+    case "same-file":
+      return i18n.t("This very file is here already.");
+    case "wrong-state":
+      return i18n.t("It has moved on meanwhile. Load the page anew to see how far it is.");
     case "too-many-tries":
       return i18n.t(
         "Too many tries. Wait {minutes, plural, one {# minute} other {# minutes}}, then try again.",

@@ -1,0 +1,158 @@
+import { z } from "zod";
+import { Can, IsoDate, LevelDb, Name, Reason } from "./common";
+import { OctaveBands, ReadingFacts } from "./evaluation";
+
+/** An instrument goes out: on a worker, or to a place. Its settings are those of its preset. */
+export const OutingStart = z.object({
+  instrumentId: z.uuid(),
+  workerId: z.uuid().nullable().default(null),
+  areaId: z.uuid().nullable().default(null),
+  surveyId: z.uuid().nullable().default(null),
+  date: IsoDate,
+  /** ISO instant. */
+  outAt: z.iso.datetime({ offset: true }),
+  checkBeforeDb: z.number().min(70).max(130).nullable().default(null),
+  /** Why it goes out in spite of a certificate that is out of date. */
+  keptReason: Reason.nullable().default(null),
+});
+export type OutingStart = z.infer<typeof OutingStart>;
+
+export const OutingReturn = z.object({
+  backAt: z.iso.datetime({ offset: true }),
+  checkAfterDb: z.number().min(70).max(130).nullable().default(null),
+  covers: z.enum(["shift", "projected", "part"]),
+  readings: z.array(ReadingFacts).max(12),
+  doubts: z
+    .array(z.enum(["clipped", "under-range"]))
+    .max(2)
+    .default([]),
+  keptReason: Reason.nullable().default(null),
+  unusual: z.string().trim().max(10_000).nullable().default(null),
+});
+export type OutingReturn = z.infer<typeof OutingReturn>;
+
+/** A row of Out and back: one instrument of the site, what it is doing and what it did today. */
+export const OutingRow = z.object({
+  instrumentId: z.uuid(),
+  name: z.string(),
+  serialNumber: z.string(),
+  kind: z.string(),
+  class: z.string(),
+  calibrationDueOn: IsoDate.nullable(),
+  presets: z.array(ReadingFacts.shape.settings),
+  /** Reserved for today by a survey. */
+  reservedFor: z.object({ surveyId: z.uuid(), surveyName: z.string() }).nullable(),
+  run: z
+    .object({
+      id: z.uuid(),
+      revision: z.number(),
+      isOut: z.boolean(),
+      workerId: z.uuid().nullable(),
+      workerName: z.string().nullable(),
+      employeeNumber: z.string().nullable(),
+      areaName: z.string().nullable(),
+      surveyId: z.uuid().nullable(),
+      date: IsoDate,
+      outAt: z.string().nullable(),
+      backAt: z.string().nullable(),
+      /** When the worker's shift ends, so that a late return can be asked about. */
+      expectedBackAt: z.string().nullable(),
+      checkBeforeDb: z.number().nullable(),
+      checkAfterDb: z.number().nullable(),
+      readingsCount: z.number(),
+      historyId: z.uuid().nullable(),
+    })
+    .nullable(),
+});
+export type OutingRow = z.infer<typeof OutingRow>;
+export const OutingBoard = z.object({
+  siteId: z.uuid(),
+  timeZone: z.string(),
+  date: IsoDate,
+  rows: z.array(OutingRow),
+  can: Can("change"),
+});
+export type OutingBoard = z.infer<typeof OutingBoard>;
+export const OutingQuery = z.object({ siteId: z.uuid(), date: IsoDate.optional() });
+
+/** A sample taken by hand, at a task. */
+export const SampleInput = z.object({
+  surveyId: z.uuid().nullable().default(null),
+  taskId: z.uuid(),
+  instrumentId: z.uuid(),
+  workerId: z.uuid().nullable().default(null),
+  place: Name(200).nullable().default(null),
+  date: IsoDate,
+  startedAt: z.iso.datetime({ offset: true }),
+  durationMin: z.number().positive().max(1440),
+  levelDb: LevelDb,
+  lceqDb: z.number().min(20).max(180).nullable().default(null),
+  lasMaxDb: z.number().min(20).max(180).nullable().default(null),
+  peak: ReadingFacts.shape.peak,
+  octaveBandsDb: OctaveBands.nullable().default(null),
+  checkBeforeDb: z.number().min(70).max(130).nullable().default(null),
+  checkAfterDb: z.number().min(70).max(130).nullable().default(null),
+  doubts: z
+    .array(z.enum(["clipped", "under-range"]))
+    .max(2)
+    .default([]),
+  keptReason: Reason.nullable().default(null),
+  unusual: z.string().trim().max(10_000).nullable().default(null),
+  /** Files sent before, as photographs. */
+  fileIds: z.array(z.uuid()).max(6).default([]),
+});
+export type SampleInput = z.infer<typeof SampleInput>;
+
+export const CalibrationInput = z
+  .object({
+    doneOn: IsoDate,
+    hasPassed: z.boolean(),
+    foundErrorDb: z.number().min(-20).max(20).nullable().default(null),
+    dueOn: IsoDate.nullable().default(null),
+    certificateFileId: z.uuid().nullable().default(null),
+    note: z.string().trim().max(2000).default(""),
+  })
+  .refine(({ hasPassed, dueOn }) => hasPassed || dueOn === null, {
+    path: ["dueOn"],
+    params: { code: "failed-has-no-due-date" },
+  });
+export type CalibrationInput = z.infer<typeof CalibrationInput>;
+export const CalibrationView = z.object({
+  id: z.uuid(),
+  doneOn: IsoDate,
+  hasPassed: z.boolean(),
+  foundErrorDb: z.number().nullable(),
+  dueOn: IsoDate.nullable(),
+  certificateFileId: z.uuid().nullable(),
+  note: z.string(),
+  authorName: z.string().nullable(),
+  createdAt: z.string(),
+});
+/** An instrument's calibrations, and what hangs on it since its last good check. */
+export const CalibrationHistory = z.object({
+  rows: z.array(CalibrationView),
+  lastGoodCheckAt: z.string().nullable(),
+  /** Filled where the latest calibration failed. */
+  inDoubt: z.array(
+    z.object({
+      runId: z.uuid(),
+      date: IsoDate,
+      workerId: z.uuid().nullable(),
+      workerName: z.string().nullable(),
+      taskName: z.string().nullable(),
+      /** Days whose current result rests on the run. */
+      resultsCount: z.number(),
+    }),
+  ),
+});
+export type CalibrationHistory = z.infer<typeof CalibrationHistory>;
+
+export const FileView = z.object({
+  id: z.uuid(),
+  name: z.string(),
+  mediaType: z.string(),
+  sizeBytes: z.number(),
+  sha256: z.string(),
+  uploadedAt: z.string(),
+});
+export type FileView = z.infer<typeof FileView>;

@@ -1,0 +1,254 @@
+import { z } from "zod";
+import { Can, IsoDate, LevelDb, Name, PageQuery, pageOf, Reason } from "./common";
+import { InstrumentClassName, OctaveBands } from "./evaluation";
+
+export const Strategy = z.enum(["task", "job", "full-day"]);
+export type Strategy = z.infer<typeof Strategy>;
+export const SurveyState = z.enum(["planned", "measuring", "done", "struck"]);
+
+/** What article 4(6) of Directive 2003/10/EC asks to be looked at beside the level. */
+export const RISK_FACTORS = [
+  "impulse",
+  "vibration",
+  "ototoxic-substances",
+  "warning-signals",
+] as const;
+const RiskAnswer = z.object({
+  answer: z.enum(["yes", "no"]).nullable(),
+  note: z.string().trim().max(500),
+});
+export const RiskFactors = z.object({
+  impulse: RiskAnswer,
+  vibration: RiskAnswer,
+  "ototoxic-substances": RiskAnswer,
+  "warning-signals": RiskAnswer,
+});
+export type RiskFactors = z.infer<typeof RiskFactors>;
+
+export const SurveyTarget = z.object({
+  /** Null: the job as a whole. */
+  taskId: z.uuid().nullable(),
+  samplesCount: z.number().int().min(1).max(200),
+  sampleMin: z.number().positive().max(1440),
+});
+export const SurveyPerson = z.object({
+  workerId: z.uuid(),
+  part: z.enum(["drawn", "reserve", "named"]),
+});
+export const Reservation = z
+  .object({ instrumentId: z.uuid(), fromDate: IsoDate, toDate: IsoDate })
+  .refine(({ fromDate, toDate }) => toDate >= fromDate, {
+    path: ["toDate"],
+    params: { code: "ends-before-it-starts" },
+  });
+
+const SurveyFacts = z.object({
+  name: Name(120),
+  purpose: z.string().trim().max(2000).default(""),
+  strategy: Strategy,
+  fromDate: IsoDate,
+  toDate: IsoDate,
+  drawSeed: z.string().min(1).max(60),
+  observers: z.array(Name(120)).max(20).default([]),
+  riskFactors: RiskFactors,
+  targets: z.array(SurveyTarget).min(1).max(24),
+  people: z.array(SurveyPerson).max(200).default([]),
+  reservations: z.array(Reservation).max(40).default([]),
+});
+const inOrder = ({ fromDate, toDate }: { fromDate: string; toDate: string }) => toDate >= fromDate;
+const order = { path: ["toDate"], params: { code: "ends-before-it-starts" } };
+
+export const SurveyInput = SurveyFacts.extend({ siteId: z.uuid(), jobId: z.uuid() }).refine(
+  inOrder,
+  order,
+);
+export type SurveyInput = z.infer<typeof SurveyInput>;
+export const SurveyChange = SurveyFacts.refine(inOrder, order);
+export type SurveyChange = z.infer<typeof SurveyChange>;
+export const SurveyStateChange = z.object({
+  state: SurveyState,
+  /** Needed to strike a survey. */
+  note: Reason.nullable().default(null),
+});
+
+/** What the standard asks of a survey of this group: a proposal, computed and not stored. */
+export const SurveyPlanQuery = z.object({
+  siteId: z.uuid(),
+  jobId: z.uuid(),
+  strategy: Strategy.optional(),
+  seed: z.string().min(1).max(60).optional(),
+});
+export const SurveyPlan = z.object({
+  strategy: Strategy,
+  /** Code of the reason why this strategy is preselected. */
+  strategyReason: z.string(),
+  seed: z.string(),
+  groupSize: z.number(),
+  targets: z.array(
+    SurveyTarget.extend({
+      taskName: z.string().nullable(),
+      /** Nominal minutes of the task, and what the shifts of the last months really had. */
+      nominalMin: z.number().nullable(),
+      observed: z.object({ count: z.number(), meanMin: z.number(), sdMin: z.number() }).nullable(),
+      reason: z.string(),
+      clause: z.string(),
+    }),
+  ),
+  people: z.array(SurveyPerson.extend({ name: z.string(), employeeNumber: z.string() })),
+  instruments: z.array(
+    z.object({
+      id: z.uuid(),
+      name: z.string(),
+      serialNumber: z.string(),
+      kind: z.string(),
+      class: z.string(),
+      calibrationDueOn: IsoDate.nullable(),
+      reservedBy: z.array(
+        z.object({
+          surveyId: z.uuid(),
+          surveyName: z.string(),
+          fromDate: IsoDate,
+          toDate: IsoDate,
+        }),
+      ),
+    }),
+  ),
+});
+export type SurveyPlan = z.infer<typeof SurveyPlan>;
+
+/** One sample of a survey: a run by hand, a full-day run, or a stretch of a run's time history. */
+export const SurveySample = z.object({
+  runId: z.uuid(),
+  runRevisionId: z.uuid(),
+  fromS: z.number().nullable(),
+  toS: z.number().nullable(),
+  taskId: z.uuid().nullable(),
+  workerId: z.uuid().nullable(),
+  workerName: z.string().nullable(),
+  place: z.string().nullable(),
+  date: IsoDate,
+  durationMin: z.number().nullable(),
+  /** LAeq, dB; null where the run gives none, as a 5 dB average. */
+  laeqDb: z.number().nullable(),
+  lceqDb: z.number().nullable(),
+  lasMaxDb: z.number().nullable(),
+  peakDb: z.number().nullable(),
+  peakWeighting: z.enum(["A", "C", "Z"]).nullable(),
+  octaveBandsDb: OctaveBands.nullable(),
+  instrument: InstrumentClassName,
+  serialNumber: z.string(),
+  checkBeforeDb: z.number().nullable(),
+  checkAfterDb: z.number().nullable(),
+  doubts: z.array(z.string()),
+  keptReason: z.string().nullable(),
+  unusual: z.string().nullable(),
+});
+export type SurveySample = z.infer<typeof SurveySample>;
+
+/** What the samples of one target come to. */
+export const TargetResult = z.object({
+  taskId: z.uuid().nullable(),
+  taskName: z.string().nullable(),
+  samplesCount: z.number(),
+  wantedCount: z.number(),
+  levelDb: z.number().nullable(),
+  rangeDb: z.number().nullable(),
+  /** Code of what the standard asks for next, as more samples; null: enough. */
+  asksFor: z.string().nullable(),
+  lcMinusLaDb: z.number().nullable(),
+  octaveBandsDb: OctaveBands.nullable(),
+  lasMaxDb: z.number().nullable(),
+  peakDb: z.number().nullable(),
+  peakWeighting: z.enum(["A", "C", "Z"]).nullable(),
+  keptReasons: z.array(z.string()),
+});
+
+export const SurveyView = SurveyFacts.extend({
+  id: z.uuid(),
+  siteId: z.uuid(),
+  jobId: z.uuid(),
+  jobName: z.string(),
+  state: SurveyState,
+  closingNote: z.string().nullable(),
+  authorName: z.string().nullable(),
+  createdAt: z.string(),
+  revision: z.number(),
+  can: Can("change", "adopt"),
+});
+export type SurveyView = z.infer<typeof SurveyView>;
+export const SurveyDetail = SurveyView.extend({
+  peopleNames: z.record(z.string(), z.object({ name: z.string(), employeeNumber: z.string() })),
+  taskNames: z.record(z.string(), z.string()),
+  instrumentNames: z.record(
+    z.string(),
+    z.object({ name: z.string(), serialNumber: z.string(), calibrationDueOn: IsoDate.nullable() }),
+  ),
+  samples: z.array(SurveySample),
+  results: z.array(TargetResult),
+  /** Levels that rest on this survey already. */
+  adopted: z.array(z.object({ taskId: z.uuid(), levelDb: LevelDb, effectiveFrom: IsoDate })),
+});
+export type SurveyDetail = z.infer<typeof SurveyDetail>;
+export const SurveyRow = SurveyView.pick({
+  id: true,
+  siteId: true,
+  jobId: true,
+  jobName: true,
+  name: true,
+  strategy: true,
+  state: true,
+  fromDate: true,
+  toDate: true,
+}).extend({ samplesCount: z.number(), wantedCount: z.number() });
+export const SurveyPage = pageOf(SurveyRow);
+export const SurveyFilter = PageQuery.extend({
+  siteId: z.uuid().optional(),
+  jobId: z.uuid().optional(),
+  state: SurveyState.optional(),
+});
+
+/** The survey's results become the levels of its tasks. */
+export const SurveyAdoption = z.object({
+  effectiveFrom: IsoDate,
+  reason: Reason,
+  /** Which task a job-based or full-day result stands for; a task-based one names its own tasks. */
+  targets: z
+    .array(z.object({ position: z.number().int().min(0), taskId: z.uuid() }))
+    .min(1)
+    .max(24),
+});
+export type SurveyAdoption = z.infer<typeof SurveyAdoption>;
+
+/** Why a group's noise wants measuring. Codes; the words are made where they are shown. */
+export const MeasuringReason = z.discriminatedUnion("code", [
+  z.object({ code: z.literal("never-measured"), taskNames: z.array(z.string()) }),
+  z.object({ code: z.literal("measured-too-long-ago"), measuredOn: IsoDate, dueOn: IsoDate }),
+  z.object({
+    code: z.literal("changed-since"),
+    changeId: z.uuid(),
+    kind: z.string(),
+    what: z.string(),
+    happenedOn: IsoDate,
+    /** Protectors chosen on what has changed. */
+    assignmentsCount: z.number(),
+  }),
+  z.object({ code: z.literal("undecided"), daysCount: z.number(), workersCount: z.number() }),
+  z.object({
+    code: z.literal("doubtful-instrument"),
+    serialNumber: z.string(),
+    runsCount: z.number(),
+  }),
+]);
+export type MeasuringReason = z.infer<typeof MeasuringReason>;
+export const MeasuringNeed = z.object({
+  siteId: z.uuid(),
+  siteName: z.string(),
+  jobId: z.uuid(),
+  jobName: z.string(),
+  workersCount: z.number(),
+  reasons: z.array(MeasuringReason).min(1),
+  /** A survey under way for this group. */
+  surveyId: z.uuid().nullable(),
+});
+export type MeasuringNeed = z.infer<typeof MeasuringNeed>;
+export const MeasuringNeeds = z.object({ rows: z.array(MeasuringNeed), groupsCount: z.number() });

@@ -1,0 +1,3 @@
+import type { PageRoute } from "./page-route";
+
+export const measuringRoutes: PageRoute[] = [];
