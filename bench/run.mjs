@@ -20,8 +20,19 @@ import { projectFolder } from "../scripts/lib/project.mjs";
 
 const DATABASE = "dinward_bench";
 const DEFAULT_SHIFTS = 60_000;
-const allParts = ["engine", "pages", "screens", "saving", "export"];
-const needDatabase = ["screens", "saving", "export"];
+const allParts = [
+  "engine",
+  "history",
+  "recordings",
+  "pages",
+  "screens",
+  "saving",
+  "export",
+  "histories",
+];
+/** As one bundle, as browsers and servers run it: a loader's helpers would be measured with it. */
+const bundled = ["engine", "history", "recordings"];
+const needDatabase = ["screens", "saving", "export", "histories"];
 
 const given = process.argv.slice(2);
 const shifts = Number(given.find((arg) => arg.startsWith("--shifts="))?.slice(9) ?? DEFAULT_SHIFTS);
@@ -126,11 +137,9 @@ async function bench() {
     );
     for (const part of parts) {
       const began = performance.now();
-      // The engine as one bundle, as browsers and servers run it: a loader's helpers would be measured with it.
-      const args =
-        part === "engine"
-          ? [await bundlePart(part, folder)]
-          : ["--import", "tsx", `bench/${part}.ts`];
+      const args = bundled.includes(part)
+        ? [await bundlePart(part, folder)]
+        : ["--import", "tsx", `bench/${part}.ts`];
       await runStep(part, args, env, true);
       console.log(`  (${part}: ${((performance.now() - began) / 1000).toFixed(0)} s)`);
     }

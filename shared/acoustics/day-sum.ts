@@ -7,7 +7,14 @@ import {
   servesExactly,
   weightOf,
 } from "./exchange-law";
-import type { CriterionResult, DayInput, ReadingInput, Reason, ShiftInput } from "./types";
+import type {
+  CriterionResult,
+  DayInput,
+  LevelMetric,
+  ReadingInput,
+  Reason,
+  ShiftInput,
+} from "./types";
 
 /** Less than this of a shift is the machine's noise and not time. */
 const NO_TIME_MIN = 1e-9;
@@ -55,7 +62,7 @@ export function missingTime(shift: ShiftInput): "no-tasks" | "time-unknown" | nu
 }
 
 /** The tasks of a shift, under a law. */
-function sumTasks(shift: ShiftInput, law: ExchangeLaw): Sum {
+export function sumTasks(shift: ShiftInput, law: ExchangeLaw): Sum {
   let least = 0;
   let most = 0;
   let missing: Reason | null = missingTime(shift);
@@ -113,30 +120,59 @@ export function sumReading(reading: ReadingInput, shift: ShiftInput, law: Exchan
   return sum! * projection(reading, shift);
 }
 
-function projection(reading: ReadingInput, shift: ShiftInput): number {
+export function projection(reading: ReadingInput, shift: ShiftInput): number {
   return reading.covers === "projected" ? shift.lengthMin / reading.durationMin : 1;
+}
+
+/** What a reading under other settings than the law's says about its shift; `atMost` null: it covers only a part. */
+export interface ReadingBounds {
+  readonly reading: ReadingInput;
+  readonly metric: LevelMetric;
+  readonly averageDb: number;
+  /** Projected to the shift where the officer says so. */
+  readonly minutes: number;
+  readonly atLeast: number;
+  readonly atMost: number | null;
+}
+
+export function boundsOfReadings(shift: ShiftInput, law: ExchangeLaw): ReadingBounds[] {
+  const found: ReadingBounds[] = [];
+  for (const reading of shift.readings) {
+    const averageDb = reading.averageDb ?? averageOfDose(reading);
+    if (averageDb === null || reading.settings.weighting !== "A") continue;
+    const minutes = reading.durationMin * projection(reading, shift);
+    const metric = isLaeq(reading.settings)
+      ? ({ kind: "laeq" } as const)
+      : ({ kind: "lavg", settings: reading.settings } as const);
+    found.push({
+      reading,
+      metric,
+      averageDb,
+      minutes,
+      atLeast: minutes * leastWeight(metric, averageDb, law),
+      atMost: reading.covers === "part" ? null : minutes * mostWeight(metric, averageDb, law),
+    });
+  }
+  return found;
 }
 
 /** What a shift's readings under other settings prove, where the tasks leave the matter open. */
 function narrow(tasks: Sum, shift: ShiftInput, law: ExchangeLaw): Sum {
   let { least, most, missing } = tasks;
-  for (const reading of shift.readings) {
-    const averageDb = reading.averageDb ?? averageOfDose(reading);
-    if (averageDb === null) continue;
-    const minutes = reading.durationMin * projection(reading, shift);
-    const metric = isLaeq(reading.settings)
-      ? ({ kind: "laeq" } as const)
-      : ({ kind: "lavg", settings: reading.settings } as const);
-    if (reading.settings.weighting !== "A") continue;
-    least = Math.max(least, minutes * leastWeight(metric, averageDb, law));
-    if (reading.covers === "part") continue;
-    const atMost = minutes * mostWeight(metric, averageDb, law);
-    if (atMost >= most) continue;
+  for (const { atLeast, atMost } of boundsOfReadings(shift, law)) {
+    least = Math.max(least, atLeast);
+    if (atMost === null || atMost >= most) continue;
     most = atMost;
     missing = null;
   }
   // Where tasks and readings contradict each other, the worker's own reading is believed.
   return { least, most: Math.max(least, most), missing };
+}
+
+/** The tasks of a shift without a governing reading, with what its other readings prove about them. */
+export function narrowed(tasks: Sum, shift: ShiftInput, law: ExchangeLaw): Sum {
+  const isOpen = shift.readings.length > 0 && tasks.least < tasks.most;
+  return isOpen ? narrow(tasks, shift, law) : tasks;
 }
 
 /** LAVG that a dose stands for over the reading's run time, dB; null for no dose at all. */
@@ -171,8 +207,7 @@ export function sumDay(day: DayInput, law: ExchangeLaw): DaySum {
       if (reading.covers === "projected") projected++;
       continue;
     }
-    const isOpen = shift.readings.length > 0 && tasks.least < tasks.most;
-    const shiftSum = isOpen ? narrow(tasks, shift, law) : tasks;
+    const shiftSum = narrowed(tasks, shift, law);
     least += shiftSum.least;
     most += shiftSum.most;
     missing ??= shiftSum.missing;

@@ -11,6 +11,9 @@ import {
   type BudgetPart,
   type DayUncertainty,
   INSTRUMENT_DB,
+  jobSamplingContributionDb,
+  jobSamplingUncertaintyDb,
+  LEAST_JOB_SAMPLES,
   samplingUncertaintyDb,
   uncertaintyBudget,
 } from "./uncertainty";
@@ -30,7 +33,8 @@ interface Source {
  * position only. One level used twice in a day is one source, whose errors add up and don't average out, so that
  * splitting a task changes nothing.
  *
- * Null with a reason where a task lacks what the standard asks for: two samples and an instrument. Time said to be
+ * Null with a reason where a task lacks what the standard asks for: two samples (three of a job or of full days) and an
+ * instrument. Time said to be
  * quiet adds its energy; it was not measured, and the standard has no term for it.
  *
  * @source iso-9612-2009 C.2
@@ -93,7 +97,7 @@ function addTask(sources: Source[], task: TimedTask, factor: number): Uncertaint
     same.durationUncertaintyMin += durationUncertaintyMin;
     return null;
   }
-  const samplingDb = samplingUncertaintyDb(level.samplesDb);
+  const samplingDb = levelSamplingDb(level);
   if (samplingDb === null) return "too-few-samples";
   if (level.instrument === null) return "no-instrument";
   sources.push({
@@ -108,12 +112,25 @@ function addTask(sources: Source[], task: TimedTask, factor: number): Uncertaint
   return null;
 }
 
+/**
+ * The sampling part of a level: u1a of a task's samples, or the contribution c1·u1 of a job's or of full days, which is
+ * not defined below three samples.
+ *
+ * @source iso-9612-2009 C.2.2, C.3.2
+ */
+function levelSamplingDb({ samplesDb, strategy = "task" }: TaskLevel): number | null {
+  if (strategy === "task") return samplingUncertaintyDb(samplesDb);
+  if (samplesDb.length < LEAST_JOB_SAMPLES) return null;
+  return jobSamplingContributionDb(samplesDb.length, jobSamplingUncertaintyDb(samplesDb));
+}
+
 function isSameSource(source: Source, task: TimedTask, level: TaskLevel): boolean {
   if (source.level === null || source.taskId !== task.taskId) return false;
   if (source.level === level) return true;
   return (
     source.level.revisionId === level.revisionId &&
     source.level.levelDb === level.levelDb &&
+    (source.level.strategy ?? "task") === (level.strategy ?? "task") &&
     source.level.instrument === level.instrument &&
     source.level.samplesDb.length === level.samplesDb.length &&
     source.level.samplesDb.every((sampleDb, index) => sampleDb === level.samplesDb[index])

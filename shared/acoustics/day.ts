@@ -11,6 +11,7 @@ import {
   levelOfWeight,
 } from "./exchange-law";
 import { dayMaximum } from "./maximum";
+import { outsideCriterion } from "./outside-criterion";
 import { appendixBWord, decidingTask } from "./protection/adequacy";
 import { type DayAtEar, evaluateAtEar } from "./protection/at-ear";
 import type {
@@ -165,22 +166,6 @@ class Day {
     if (criterion.quantity !== "lex-8h") return null;
     return this.uncertainty().budget?.expandedDb ?? null;
   }
-}
-
-/**
- * The criterion whose level stands for the noise without protection: the first action value, whose threshold hides
- * least, else the limit.
- */
-export function outsideCriterion(ruleSet: RuleSetVersion): Criterion {
-  let limit: Criterion | undefined;
-  for (const criterion of ruleSet.criteria) {
-    const { quantity, kind } = criterion;
-    if (quantity === "slow-maximum" || quantity === "peak" || quantity === "lex-weekly") continue;
-    if (criterion.judged === "without-protection" && kind === "action") return criterion;
-    if (kind === "limit") limit ??= criterion;
-  }
-  if (!limit) throw new RangeError(`Rule set ${ruleSet.key} has neither action value nor limit`);
-  return limit;
 }
 
 function judgeSum(
@@ -404,14 +389,19 @@ function gradeOf(input: DayInput, outside: DaySum): Grade {
   return GRADES[worst]!;
 }
 
-/** The officer's reasons for readings that count in spite of a failed field check. */
+/** The officer's reasons for readings, and for samples behind a task's level, that count all the same. */
 function keptReasons(input: DayInput): readonly string[] {
   let reasons: string[] | undefined;
+  const add = (reason: string) => {
+    reasons ??= [];
+    if (!reasons.includes(reason)) reasons.push(reason);
+  };
   for (const shift of input.shifts) {
     for (const { covers, keptReason } of shift.readings) {
-      if (keptReason === null || covers === "part") continue;
-      reasons ??= [];
-      reasons.push(keptReason);
+      if (keptReason !== null && covers !== "part") add(keptReason);
+    }
+    for (const { level } of shift.tasks) {
+      for (const reason of level?.keptReasons ?? NONE) add(reason);
     }
   }
   return reasons ?? NONE;

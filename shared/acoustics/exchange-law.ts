@@ -109,7 +109,7 @@ function steadyWeight(levelDb: number, law: ExchangeLaw): number {
 }
 
 /** The most by which the table asks more than its exchange rate does, as a factor. */
-function tableExcess(law: ExchangeLaw): number {
+export function tableExcess(law: ExchangeLaw): number {
   const table = law.table ?? [];
   let most = 0;
   for (let row = 0; row < table.length; row++) {
@@ -142,7 +142,8 @@ export function isLaeq(settings: MeterSettings): boolean {
   return settings.exchangeRateDb === 3 && settings.thresholdDb === null;
 }
 
-const asLaw = (settings: MeterSettings): ExchangeLaw => ({
+/** The exchange rate of an instrument's settings, as a law without a threshold. */
+export const asLaw = (settings: MeterSettings): ExchangeLaw => ({
   ...ENERGY_LAW,
   isEnergy: isLaeq(settings),
   exchangeRateDb: settings.exchangeRateDb,

@@ -1,4 +1,4 @@
-export { evaluateDay, METHOD_VERSION, outsideCriterion } from "./day";
+export { evaluateDay, METHOD_VERSION } from "./day";
 export { allowedMin, dosePct, tableDosePct, twaDb } from "./dose";
 export {
   energyMeanDb,
@@ -10,6 +10,7 @@ export {
   soundExposurePa2h,
 } from "./exposure";
 export { METHODS, type Method } from "./methods";
+export { outsideCriterion } from "./outside-criterion";
 export {
   activeAttenuationDb,
   bandCancellationDb,

@@ -1,5 +1,6 @@
 /** A document that the arithmetic follows. `read`: in a copy of it; `reprint`: in a reprint; else from memory. */
 export interface Source {
+  /** English, and a message of the catalogue, as is an edition that is more than a year. */
   readonly title: string;
   readonly edition: string;
   /** What its clauses stand on, and what is open about it. */
@@ -10,19 +11,19 @@ export interface Source {
 /** Every source that a docstring or a working names by its id. */
 export const SOURCES = {
   "iso-9612-2009": {
-    title: "ISO 9612, Determination of occupational noise exposure, engineering method",
+    title: /*i18n*/ "ISO 9612, Determination of occupational noise exposure, engineering method",
     edition: "2009",
     note: "Clauses and Annex C from memory; Table C.4 agrees with its own definition. A third edition appeared in 2025 and is not followed here.",
     status: "from-memory",
   },
   "iso-4869-2": {
-    title: "ISO 4869-2, Effective A-weighted levels when hearing protectors are worn",
-    edition: "2018, by pooled means and deviations as in 1994",
+    title: /*i18n*/ "ISO 4869-2, Effective A-weighted levels when hearing protectors are worn",
+    edition: /*i18n*/ "2018, by pooled means and deviations as in 1994",
     note: "Reference noises read in a translation from 125 Hz to 1 kHz and in part above; the rest from memory, every row summing to 100.0 dB.",
     status: "from-memory",
   },
   "en-458": {
-    title: "EN 458, Selection, use, care and maintenance of hearing protectors",
+    title: /*i18n*/ "EN 458, Selection, use, care and maintenance of hearing protectors",
     edition: "2016",
     note: "Bands of 5 dB below the action value, from memory.",
     status: "from-memory",
@@ -34,19 +35,20 @@ export const SOURCES = {
     status: "from-memory",
   },
   "osha-1910.95": {
-    title: "29 CFR 1910.95, Occupational noise exposure, with appendices A and B",
-    edition: "as amended 1983",
+    title: /*i18n*/ "29 CFR 1910.95, Occupational noise exposure, with appendices A and B",
+    edition: /*i18n*/ "as amended 1983",
     note: "Paragraphs (a), (b) and the tables read.",
     status: "read",
   },
   "osha-otm": {
-    title: "OSHA Technical Manual, section III, chapter 5, Noise",
-    edition: "as last revised",
+    title: /*i18n*/ "OSHA Technical Manual, section III, chapter 5, Noise",
+    edition: /*i18n*/ "as last revised",
     note: "Derating and double protection, in a reprint.",
     status: "reprint",
   },
   "niosh-98-126": {
-    title: "NIOSH 98-126, Criteria for a recommended standard, occupational noise exposure",
+    title:
+      /*i18n*/ "NIOSH 98-126, Criteria for a recommended standard, occupational noise exposure",
     edition: "1998",
     note: "Tables in a reprint; the order of derating from memory.",
     status: "reprint",
@@ -58,13 +60,13 @@ export const SOURCES = {
     status: "read",
   },
   "nr-15": {
-    title: "NR-15, Atividades e operações insalubres, annexes 1 and 2",
+    title: /*i18n*/ "NR-15, Atividades e operações insalubres, annexes 1 and 2",
     edition: "1978",
     note: "Tables in a reprint.",
     status: "reprint",
   },
   "as-nzs-1270": {
-    title: "AS/NZS 1270, Acoustic hearing protectors",
+    title: /*i18n*/ "AS/NZS 1270, Acoustic hearing protectors",
     edition: "2002",
     note: "SLC80 comes off the C-weighted level.",
     status: "from-memory",
@@ -87,6 +89,12 @@ export const SOURCES = {
     note: "Weightings at the nominal mid frequencies; 67 of 68 agree with the analytic form.",
     status: "from-memory",
   },
+  "iec-60942": {
+    title: "IEC 60942, Sound calibrators",
+    edition: "2017",
+    note: "Frequency within 2 % for class 2, from memory.",
+    status: "from-memory",
+  },
   "elliott-2001": {
     title: "S. J. Elliott, Signal Processing for Active Control",
     edition: "2001",
@@ -100,10 +108,42 @@ export const SOURCES = {
     status: "derived",
   },
   "wearing-time": {
-    title: "Mean of a level over the time worn and the time not worn",
-    edition: "closed form",
+    title: /*i18n*/ "Mean of a level over the time worn and the time not worn",
+    edition: /*i18n*/ "closed form",
     note: "Follows from the definition of the exchange-rate mean.",
     status: "derived",
+  },
+  "johnson-welch-1940": {
+    title: "N. L. Johnson, B. L. Welch, Applications of the non-central t-distribution",
+    edition: "Biometrika 31, 1940",
+    note: "Tolerance factor and exceedance bound, integrated from the definition; agree with printed factors.",
+    status: "derived",
+  },
+  "cohen-1961": {
+    title:
+      "A. C. Cohen, Tables for maximum likelihood estimates: singly truncated and singly censored samples",
+    edition: "Technometrics 3, 1961",
+    note: "The same likelihood, maximized numerically and for several thresholds.",
+    status: "derived",
+  },
+  "hirsch-stedinger-1987": {
+    title:
+      "R. M. Hirsch, J. R. Stedinger, Plotting positions for historical floods and their precision",
+    edition: "Water Resources Research 23, 1987",
+    note: "Plotting positions beside samples below several thresholds, from memory.",
+    status: "from-memory",
+  },
+  "grubbs-1969": {
+    title: "F. E. Grubbs, Procedures for detecting outlying observations in samples",
+    edition: "Technometrics 11, 1969",
+    note: "Critical values computed from Student's t.",
+    status: "derived",
+  },
+  "searle-1992": {
+    title: "S. R. Searle, G. Casella, C. E. McCulloch, Variance Components",
+    edition: "1992",
+    note: "One-way analysis of variance with classes of unequal size, from memory.",
+    status: "from-memory",
   },
 } as const satisfies Record<string, Source>;
 

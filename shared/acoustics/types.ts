@@ -48,6 +48,9 @@ export type Grade = "measured-worker" | "measured-group" | "task-level" | "estim
 
 export type InstrumentClass = "class-1-meter" | "class-2-meter" | "dosimeter";
 
+/** How a level was measured: task by task, by samples over a job, or over whole days. */
+export type SurveyStrategy = "task" | "job" | "full-day";
+
 /** The noise of one task. */
 export interface TaskLevel {
   /** The record this level comes from; shown in the working. */
@@ -64,6 +67,10 @@ export interface TaskLevel {
   readonly samplesDb: readonly number[];
   readonly instrument: InstrumentClass | null;
   readonly grade: Grade;
+  /** Strategy of the survey behind the samples; absent: task by task. */
+  readonly strategy?: SurveyStrategy;
+  /** The officer's reasons for samples, or too few of them, that count all the same; absent: none. */
+  readonly keptReasons?: readonly string[];
 }
 
 export type ProtectorKind =

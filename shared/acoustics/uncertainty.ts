@@ -1,5 +1,5 @@
 import { energyMeanDb } from "./exposure";
-import type { InstrumentClass, UncertaintyReason } from "./types";
+import type { InstrumentClass, SurveyStrategy, UncertaintyReason } from "./types";
 
 /** Coverage factor of the one-sided interval of 95 %. @source iso-9612-2009 C.1 */
 export const COVERAGE_FACTOR = 1.65;
@@ -140,6 +140,12 @@ export function jobSamplingUncertaintyDb(samplesDb: readonly number[]): number {
   return Math.sqrt(squares / (count - 1));
 }
 
+/** Fewest samples of a job, or of full days, for which the standard states a contribution. */
+export const LEAST_JOB_SAMPLES = 3;
+
+/** Scatter u1 above which the standard asks to plan anew rather than to state so wide a result, dB. */
+export const LARGE_SCATTER_DB = 3.5;
+
 /**
  * Contribution c1·u1 of N job-based or full-day samples with scatter u1, dB: the one-sided 95 % confidence limit of a
  * log-normal mean (Land), above the estimate by energy, over 1.65. The standard prints it as a table; this computes it.
@@ -149,7 +155,7 @@ export function jobSamplingUncertaintyDb(samplesDb: readonly number[]): number {
  * @source land-1971
  */
 export function jobSamplingContributionDb(sampleCount: number, scatterDb: number): number {
-  if (!(sampleCount >= 3))
+  if (!(sampleCount >= LEAST_JOB_SAMPLES))
     throw new RangeError("The contribution is defined from three samples on");
   if (scatterDb === 0) return 0;
   const sd = (scatterDb * Math.LN10) / 10;
@@ -196,3 +202,259 @@ function arithmeticMean(values: readonly number[]): number {
   for (const value of values) sum += value;
   return sum / values.length;
 }
+
+/**
+ * Standard uncertainty of a task's duration from observed ones, minutes: √(Σ(Tj − T̄)² / (J(J − 1))). Null below two.
+ *
+ * @source iso-9612-2009 C.2.3 (C.7)
+ */
+export function observedDurationUncertaintyMin(durationsMin: readonly number[]): number | null {
+  return samplingUncertaintyDb(durationsMin);
+}
+
+/**
+ * Standard uncertainty of a task's duration where only its range is known, minutes: half of it.
+ *
+ * @throws RangeError when the longest is the shorter.
+ * @source iso-9612-2009 C.2.3
+ */
+export function durationRangeUncertaintyMin(shortestMin: number, longestMin: number): number {
+  if (!(longestMin >= shortestMin)) throw new RangeError("A range goes from shortest to longest");
+  return 0.5 * (longestMin - shortestMin);
+}
+
+/** A task of a group's nominal day as a survey measured it. */
+export interface SurveyedTask {
+  readonly taskId: string;
+  readonly samplesDb: readonly number[];
+  readonly durationMin: number;
+  readonly durationUncertaintyMin: number;
+  readonly instrument: InstrumentClass;
+}
+
+/** What a survey of a group found: its tasks, or its samples of the job or of full days. */
+export type GroupSurvey =
+  | { readonly strategy: "task"; readonly tasks: readonly SurveyedTask[] }
+  | {
+      readonly strategy: "job" | "full-day";
+      readonly samplesDb: readonly number[];
+      /** Effective duration Te of the working day, minutes. */
+      readonly effectiveMin: number;
+      readonly instrument: InstrumentClass;
+    };
+
+export type BudgetSource = "sampling" | "duration" | "instrument" | "position";
+
+/** One line of a group's budget. */
+export interface BudgetItem {
+  readonly source: BudgetSource;
+  /** Null: of all tasks together, or of a job or full days. */
+  readonly taskId: string | null;
+  /** Contribution to the combined uncertainty, c·u, dB. */
+  readonly contributionDb: number;
+  /** Share in u², percent. */
+  readonly sharePct: number;
+}
+
+export interface GroupBudget {
+  readonly strategy: SurveyStrategy;
+  readonly lexDb: number;
+  readonly combinedDb: number;
+  readonly expandedDb: number;
+  /** By falling contribution; the first dominates. */
+  readonly items: readonly BudgetItem[];
+  readonly dominant: BudgetItem;
+  /** u1 of a job or of full days, dB; null by tasks. */
+  readonly scatterDb: number | null;
+  /** The scatter is so large that the standard asks to plan anew. */
+  readonly isScatterLarge: boolean;
+}
+
+/**
+ * Uncertainty budget of a group's LEX,8h. By tasks: u² = Σ [c1a²(u1a² + u2² + u3²) + (c1b·u1b)²]. By job or full days:
+ * u² = (c1u1)² + u2² + u3², the level being the samples' energy mean over the effective duration. U = 1.65·u; of
+ * Student's t the 2009 edition asks nowhere (from memory).
+ *
+ * A code instead where the standard allows no statement: fewer than two samples of a task, three of a job or of days.
+ *
+ * @source iso-9612-2009 C.2, C.3, C.4
+ */
+export function budgetOfGroup(survey: GroupSurvey): GroupBudget | UncertaintyReason {
+  const summary = summarize(survey);
+  return typeof summary === "string" ? summary : budgetOf(summary);
+}
+
+/** A change to a survey that would narrow its result. */
+export type SurveyChange =
+  | {
+      readonly kind: "more-samples";
+      readonly taskId: string | null;
+      readonly count: number;
+    }
+  | { readonly kind: "instrument"; readonly instrument: InstrumentClass }
+  | {
+      readonly kind: "duration";
+      readonly taskId: string;
+      readonly durationUncertaintyMin: number;
+    };
+
+export interface Narrowing {
+  readonly change: SurveyChange;
+  readonly expandedDb: number;
+  /** By how much U falls, dB. */
+  readonly decreaseDb: number;
+}
+
+const MORE_SAMPLES = 3;
+const MORE_DAYS = 2;
+
+/** Changes worth asking about: three more samples (two more days), a class 1 instrument, durations known twice as well. */
+export function surveyChanges(survey: GroupSurvey): SurveyChange[] {
+  const better: SurveyChange = { kind: "instrument", instrument: "class-1-meter" };
+  if (survey.strategy !== "task") {
+    const count = survey.strategy === "job" ? MORE_SAMPLES : MORE_DAYS;
+    return [{ kind: "more-samples", taskId: null, count }, better];
+  }
+  return [
+    ...survey.tasks.map(
+      ({ taskId }): SurveyChange => ({ kind: "more-samples", taskId, count: MORE_SAMPLES }),
+    ),
+    better,
+    ...survey.tasks.map(
+      ({ taskId, durationUncertaintyMin }): SurveyChange => ({
+        kind: "duration",
+        taskId,
+        durationUncertaintyMin: durationUncertaintyMin / 2,
+      }),
+    ),
+  ];
+}
+
+/**
+ * What would narrow a group's result most: each change put into the budget, level and scatter of the samples staying
+ * what they are, by falling decrease of U. Changes that don't narrow it are left out; nothing where there is no budget.
+ */
+export function whatNarrowsMost(
+  survey: GroupSurvey,
+  changes: readonly SurveyChange[] = surveyChanges(survey),
+): Narrowing[] {
+  const summary = summarize(survey);
+  if (typeof summary === "string") return [];
+  const { expandedDb: nowDb } = budgetOf(summary);
+  return changes
+    .map((change) => {
+      const { expandedDb } = budgetOf(changed(summary, change));
+      return { change, expandedDb, decreaseDb: nowDb - expandedDb };
+    })
+    .filter(({ decreaseDb }) => decreaseDb > 1e-9)
+    .sort((a, b) => b.decreaseDb - a.decreaseDb);
+}
+
+/** What of a task's samples, or of a job's, its budget hangs on. */
+interface SampledPart {
+  readonly taskId: string | null;
+  readonly levelDb: number;
+  readonly sampleCount: number;
+  /** √(Σ(Li − L̄)² / (N − 1)). */
+  readonly scatterDb: number;
+  readonly durationMin: number;
+  readonly durationUncertaintyMin: number;
+  readonly instrument: InstrumentClass;
+}
+
+interface SurveySummary {
+  readonly strategy: SurveyStrategy;
+  readonly parts: readonly SampledPart[];
+}
+
+function summarize(survey: GroupSurvey): SurveySummary | UncertaintyReason {
+  const isByTask = survey.strategy === "task";
+  const tasks = isByTask
+    ? survey.tasks.filter(({ durationMin }) => durationMin > 0)
+    : [
+        {
+          taskId: null,
+          samplesDb: survey.samplesDb,
+          durationMin: survey.effectiveMin,
+          durationUncertaintyMin: 0,
+          instrument: survey.instrument,
+        },
+      ];
+  if (tasks.length === 0) return "no-tasks";
+  const least = isByTask ? 2 : LEAST_JOB_SAMPLES;
+  if (tasks.some(({ samplesDb }) => samplesDb.length < least)) return "too-few-samples";
+  const parts = tasks.map(({ samplesDb, ...part }) => ({
+    ...part,
+    levelDb: energyMeanDb(samplesDb),
+    sampleCount: samplesDb.length,
+    scatterDb: jobSamplingUncertaintyDb(samplesDb),
+  }));
+  return { strategy: survey.strategy, parts };
+}
+
+function changed(summary: SurveySummary, change: SurveyChange): SurveySummary {
+  const parts = summary.parts.map((part) => {
+    if (change.kind === "instrument") return { ...part, instrument: change.instrument };
+    if (change.taskId !== part.taskId) return part;
+    return change.kind === "more-samples"
+      ? { ...part, sampleCount: part.sampleCount + change.count }
+      : { ...part, durationUncertaintyMin: change.durationUncertaintyMin };
+  });
+  return { ...summary, parts };
+}
+
+function budgetOf({ strategy, parts }: SurveySummary): GroupBudget {
+  const isByTask = strategy === "task";
+  const weightOf = (part: SampledPart) => part.durationMin * 10 ** (part.levelDb / 10);
+  const totalWeight = parts.reduce((sum, part) => sum + weightOf(part), 0);
+  const budgetParts = parts.map(
+    (part): BudgetPart => ({
+      taskId: part.taskId,
+      energyShare: weightOf(part) / totalWeight,
+      durationMin: part.durationMin,
+      samplingDb: isByTask
+        ? part.scatterDb / Math.sqrt(part.sampleCount)
+        : jobSamplingContributionDb(part.sampleCount, part.scatterDb),
+      durationUncertaintyMin: part.durationUncertaintyMin,
+      instrumentDb: INSTRUMENT_DB[part.instrument],
+    }),
+  );
+  const { combinedDb, expandedDb, instrumentDb2, positionDb2 } = uncertaintyBudget(budgetParts);
+  const item = (source: BudgetSource, taskId: string | null, contributionDb: number) => ({
+    source,
+    taskId,
+    contributionDb,
+    sharePct: 100 * (contributionDb / combinedDb) ** 2,
+  });
+  const items: BudgetItem[] = [
+    item("instrument", null, Math.sqrt(instrumentDb2)),
+    item("position", null, Math.sqrt(positionDb2)),
+    ...budgetParts.map(({ taskId, energyShare, samplingDb }) =>
+      item("sampling", taskId, energyShare * (samplingDb ?? 0)),
+    ),
+    ...budgetParts
+      .filter(({ durationUncertaintyMin }) => durationUncertaintyMin > 0)
+      .map(({ taskId, energyShare, durationMin, durationUncertaintyMin }) =>
+        item(
+          "duration",
+          taskId,
+          durationSensitivityDbPerMin(energyShare, durationMin) * durationUncertaintyMin,
+        ),
+      ),
+  ];
+  items.sort((a, b) => b.contributionDb - a.contributionDb);
+  const scatterDb = isByTask ? null : parts[0]!.scatterDb;
+  return {
+    strategy,
+    lexDb: 10 * Math.log10(totalWeight / REFERENCE_MIN),
+    combinedDb,
+    expandedDb,
+    items,
+    dominant: items[0]!,
+    scatterDb,
+    isScatterLarge: scatterDb !== null && scatterDb > LARGE_SCATTER_DB,
+  };
+}
+
+/** T0, minutes. */
+const REFERENCE_MIN = 480;

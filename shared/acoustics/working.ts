@@ -1,156 +1,82 @@
-import { evaluateDay, outsideCriterion } from "./day";
-import { governingReading, likenessFactor, sumDay, sumReading, unaccountedMin } from "./day-sum";
+import { evaluateDay } from "./day";
+import { governingReading, likenessFactor, sumDay } from "./day-sum";
 import { dayUncertainty } from "./day-uncertainty";
-import {
-  doseScale,
-  type ExchangeLaw,
-  lawOf,
-  leastWeight,
-  levelFactor,
-  mostWeight,
-  weightOf,
-} from "./exchange-law";
-import { lcMinusLaDb } from "./protection/attenuation";
-import { wornShareLevelDb } from "./protection/wearing-time";
-import type { SourceId } from "./sources";
+import { type ExchangeLaw, isSameLaw, lawOf, levelFactor } from "./exchange-law";
+import { outsideCriterion } from "./outside-criterion";
+import { evaluateAtEar } from "./protection/at-ear";
 import type {
   AttenuationMethod,
   Criterion,
   CriterionResult,
   DayEvaluation,
   DayInput,
-  ProtectorWord,
   Reason,
   RuleSetVersion,
   TimedTask,
-  UncertaintyReason,
   Verdict,
 } from "./types";
-import { COVERAGE_FACTOR } from "./uncertainty";
+import {
+  type BudgetPart,
+  COVERAGE_FACTOR,
+  durationSensitivityDbPerMin,
+  POSITION_DB,
+} from "./uncertainty";
+import { DayAtEarRows, type TimeAtEar } from "./working-at-ear";
+import { boundedLevel, NoiseUnderLaw } from "./working-noise";
+import {
+  type Bound,
+  bounded,
+  column,
+  difference,
+  fraction,
+  type Line,
+  level,
+  line,
+  type MathPart,
+  MINUTES_OVER_T0,
+  minutes,
+  name,
+  number,
+  power,
+  reason,
+  row,
+  SUM,
+  scientific,
+  share,
+  sign,
+  symbol,
+  symbolColumn,
+  table,
+  text,
+  unique,
+  value,
+  verdict,
+  type Working,
+  type WorkingDetail,
+  type WorkingLine,
+  type WorkingRecord,
+  type WorkingRow,
+  type WorkingSource,
+  type WorkingStep,
+  type WorkingTable,
+  type WorkingText,
+  type WorkingValue,
+  word,
+  words,
+} from "./working-parts";
+import { activeLines, bandTable, methodLines } from "./working-protector";
 
-/** A message of the catalogue (its English text is its id) and what stands in its places. */
-export interface WorkingText {
-  readonly id: string;
-  readonly values?: Readonly<Record<string, WorkingValue>>;
-}
-
-/** A number or a word, unrounded; whoever shows it rounds it by its kind. */
-export type WorkingValue =
-  | { readonly kind: "level" | "difference"; readonly db: number }
-  | { readonly kind: "minutes"; readonly min: number }
-  | { readonly kind: "share" | "dose"; readonly pct: number }
-  /** Shown as a mantissa and a power of ten. */
-  | { readonly kind: "scientific"; readonly number: number }
-  /** A constant or an intermediate number, to four figures. */
-  | { readonly kind: "number"; readonly number: number }
-  | { readonly kind: "verdict"; readonly verdict: Verdict; readonly isClear: boolean }
-  | { readonly kind: "protector-word"; readonly word: ProtectorWord }
-  | { readonly kind: "method"; readonly method: AttenuationMethod }
-  | { readonly kind: "reason"; readonly reason: Reason | UncertaintyReason }
-  /** A name that somebody gave: not translated. */
-  | { readonly kind: "name"; readonly name: string }
-  | { readonly kind: "text"; readonly text: WorkingText }
-  | { readonly kind: "list"; readonly values: readonly WorkingValue[] }
-  | { readonly kind: "math"; readonly parts: readonly MathPart[] };
-
-/** What an equation is drawn from, in order. */
-export type MathPart =
-  | { readonly kind: "sign"; readonly text: string }
-  | {
-      readonly kind: "symbol";
-      readonly base: string;
-      readonly sub?: string;
-      readonly isAtEar?: boolean;
-    }
-  | { readonly kind: "value"; readonly value: WorkingValue; readonly isResult?: boolean }
-  | { readonly kind: "sum" }
-  | {
-      readonly kind: "fraction";
-      readonly over: readonly MathPart[];
-      readonly under: readonly MathPart[];
-    }
-  | { readonly kind: "power"; readonly base: string; readonly exponent: readonly MathPart[] };
-
-export interface WorkingEquation {
-  readonly number: number;
-  readonly parts: readonly MathPart[];
-}
-
-export interface WorkingColumn {
-  readonly id: string;
-  readonly title: WorkingText | null;
-  /** Where the title is a formula. */
-  readonly symbol: readonly MathPart[] | null;
-  readonly isNumeric: boolean;
-}
-
-export interface WorkingRow {
-  /** Timed task, criterion or method that the row is about. */
-  readonly id: string;
-  readonly cells: readonly (WorkingValue | null)[];
-  readonly isTotal: boolean;
-  /** The row that governs or decides. */
-  readonly isEmphasized: boolean;
-}
-
-export interface WorkingTable {
-  readonly columns: readonly WorkingColumn[];
-  readonly rows: readonly WorkingRow[];
-}
-
-/** A record that a step rests on. */
-export interface WorkingRecord {
-  readonly kind:
-    | "shift-revision"
-    | "level-revision"
-    | "reading"
-    | "run"
-    | "protector-revision"
-    | "assignment";
-  readonly id: string;
-}
-
-export interface WorkingSource {
-  /** Null where a rule set is cited itself. */
-  readonly id: SourceId | null;
-  readonly clause: string;
-}
-
-export interface WorkingStep {
-  readonly number: number;
-  readonly title: WorkingText;
-  readonly tables: readonly WorkingTable[];
-  readonly equations: readonly WorkingEquation[];
-  /** Parts of a whole, percent, in the order in which a bar shows them. */
-  readonly shares: readonly { readonly label: WorkingText; readonly pct: number }[];
-  readonly notes: readonly WorkingText[];
-  readonly sources: readonly WorkingSource[];
-  readonly records: readonly WorkingRecord[];
-}
-
-/** One of the lines at the head: the ear, the protector, the noise without it. */
-export interface WorkingLine {
-  readonly id: "at-the-ear" | "protector" | "without-protection";
-  readonly title: WorkingText;
-  readonly level: WorkingValue | null;
-  readonly uncertainty: WorkingValue | null;
-  readonly outcome: WorkingValue | null;
-  readonly remark: WorkingText | null;
-}
-
-/** A day's result taken apart: what went in, by which clause, with the numbers put in. Nothing is left to compute. */
-export interface Working {
-  readonly methodVersion: number;
-  readonly date: string;
-  readonly governing: {
-    readonly key: string;
-    readonly version: number;
-    readonly title: string;
-    readonly citation: string;
-  };
-  readonly lines: readonly WorkingLine[];
-  readonly steps: readonly WorkingStep[];
-}
+export type {
+  MathPart,
+  Working,
+  WorkingEquation,
+  WorkingRecord,
+  WorkingSource,
+  WorkingStep,
+  WorkingTable,
+  WorkingText,
+  WorkingValue,
+} from "./working-parts";
 
 /**
  * The working of a day's result, built on demand from the same inputs. Texts are messages of the catalogue.
@@ -178,9 +104,12 @@ export function buildWorking(
   };
 }
 
-type Draft = Partial<Omit<WorkingStep, "number" | "title" | "equations">> & {
+type Draft = Partial<Omit<WorkingStep, "number" | "title" | "equations" | "details">> & {
   readonly title: WorkingText;
-  readonly equations?: readonly (readonly MathPart[])[];
+  readonly equations?: readonly Line[];
+  readonly details?: readonly (Omit<WorkingDetail, "equations"> & {
+    readonly equations: readonly Line[];
+  })[];
 };
 
 class Builder {
@@ -189,6 +118,7 @@ class Builder {
   private readonly tasks: readonly TimedTask[];
   private readonly names: ReadonlyMap<string, string>;
   private readonly isWorn: boolean;
+  private readonly dayAtEar: DayAtEarRows;
 
   constructor(
     private readonly input: DayInput,
@@ -201,6 +131,12 @@ class Builder {
     this.tasks = input.shifts.flatMap((shift) => shift.tasks);
     this.names = new Map(this.tasks.map(({ id, name }) => [id, name]));
     this.isWorn = evaluation.tasks.some(({ isWorn }) => isWorn);
+    const sum = sumDay(input, this.law);
+    this.dayAtEar = new DayAtEarRows(
+      input,
+      this.law,
+      evaluateAtEar(input, governing, this.law, sum),
+    );
   }
 
   steps(): WorkingStep[] {
@@ -214,11 +150,16 @@ class Builder {
       ...this.comparisonStep(),
     ];
     let equationNumber = 0;
+    const numbered = ({ label, parts }: Line) => ({ number: ++equationNumber, label, parts });
     return drafts.map((draft, index) => ({
       number: index + 1,
       title: draft.title,
       tables: draft.tables ?? [],
-      equations: (draft.equations ?? []).map((parts) => ({ number: ++equationNumber, parts })),
+      equations: (draft.equations ?? []).map(numbered),
+      details: (draft.details ?? []).map(({ equations, ...detail }) => ({
+        ...detail,
+        equations: equations.map(numbered),
+      })),
       shares: draft.shares ?? [],
       notes: draft.notes ?? [],
       sources: draft.sources ?? [],
@@ -234,12 +175,13 @@ class Builder {
       ({ timedTaskId }) => timedTaskId === evaluation.decidingTaskId,
     );
     const uncertainty = this.law.isEnergy ? difference(evaluation.uncertaintyDb) : null;
+    const outsideBound = evaluation.outsideBound === "exact" ? null : evaluation.outsideBound;
     const lines: WorkingLine[] = [
       {
         id: "at-the-ear",
         title: text(/*i18n*/ "At the ear"),
-        level: level(evaluation.atEarDb),
-        uncertainty,
+        level: boundedLevel(evaluation.atEarDb, this.atEarBound()),
+        uncertainty: this.atEarBound() === null ? uncertainty : null,
         outcome: atEarResult ? verdict(atEarResult) : null,
         remark: atEarResult ? this.remarkOn(atEarResult) : null,
       },
@@ -261,107 +203,60 @@ class Builder {
     lines.push({
       id: "without-protection",
       title: text(/*i18n*/ "Without protection"),
-      level: level(evaluation.outsideDb),
-      uncertainty,
+      level: boundedLevel(evaluation.outsideDb, outsideBound),
+      uncertainty: outsideBound === null ? uncertainty : null,
       outcome: outsideResult ? verdict(outsideResult) : null,
       remark: outsideResult ? this.remarkOn(outsideResult) : null,
     });
     return lines;
   }
 
-  private noiseStep(): Draft {
-    const { law } = this;
-    const isTable = law.table !== null;
-    const columns = [
-      column("task", text(/*i18n*/ "Task"), false),
-      symbolColumn("minutes", text(/*i18n*/ "Minutes"), [symbol("T", "m")]),
-      column("samples", text(/*i18n*/ "Samples, dB"), true),
-      symbolColumn("level", text(/*i18n*/ "Level, dB"), [symbol("L", "m")]),
-      symbolColumn("lc-la", null, [symbol("L", "C"), sign("−"), symbol("L", "A")]),
-      ...(law.isEnergy
-        ? [
-            symbolColumn("energy", null, [
-              MINUTES_OVER_T0,
-              sign("·"),
-              power("10", [symbol("L"), sign("/10")]),
-            ]),
-          ]
-        : [
-            symbolColumn("allowed", text(/*i18n*/ "Allowed minutes"), [symbol("T", "L")]),
-            symbolColumn("dose", text(/*i18n*/ "Dose"), [
-              fraction([symbol("T", "m")], [symbol("T", "L")]),
-            ]),
-          ]),
-    ];
-    const rows: WorkingRow[] = [];
-    let least = 0;
-    for (const shift of this.input.shifts) {
-      const factor = likenessFactor(shift);
-      for (const task of shift.tasks) {
-        const weight = task.level ? leastOrMost(task.level.metric, task.level.levelDb, law) : null;
-        const durationMin = task.durationMin * factor;
-        if (weight !== null) least += durationMin * weight;
-        rows.push(
-          row(task.id, [
-            name(task.name),
-            minutes(durationMin),
-            task.level && task.level.samplesDb.length > 0
-              ? { kind: "list", values: task.level.samplesDb.map((db) => level(db)!) }
-              : null,
-            level(task.level?.levelDb ?? null),
-            difference(task.level ? lcMinusLaDb(task.level) : null),
-            ...this.noiseCells(weight, durationMin),
-          ]),
-        );
-      }
-      const restMin = unaccountedMin(shift);
-      if (restMin > 0 && shift.unaccounted.how !== "like-the-rest") {
-        const quietDb = shift.unaccounted.how === "quiet" ? shift.unaccounted.levelDb : null;
-        const weight = quietDb === null ? null : leastWeight({ kind: "steady" }, quietDb, law);
-        if (weight !== null) least += restMin * weight;
-        rows.push(
-          row(`${shift.id}-rest`, [
-            {
-              kind: "text",
-              text: text(
-                quietDb === null ? /*i18n*/ "Not accounted for" : /*i18n*/ "Quiet, as stated",
-              ),
-            },
-            minutes(restMin),
-            null,
-            level(quietDb),
-            null,
-            ...this.noiseCells(weight, restMin),
-          ]),
-        );
-      }
+  /** The governing rule's criteria that add noise up, one of each law and bound, the one that the head shows first. */
+  private laws(): { criterion: Criterion; noise: NoiseUnderLaw; title: WorkingText | null }[] {
+    const { governing, outside, evaluation, input } = this;
+    const summed = governing.criteria.filter(
+      ({ quantity, judged }) =>
+        (quantity === "dose" || quantity === "table-dose" || quantity === "lex-8h") &&
+        judged === "without-protection",
+    );
+    const resultOf = (criterion: Criterion) =>
+      evaluation.criteria.find(
+        ({ ruleSetKey, criterionId }) =>
+          ruleSetKey === governing.key && criterionId === criterion.id,
+      )!;
+    const found: Criterion[] = [];
+    for (const criterion of [outside, ...summed]) {
+      const { bound, levelDb, dosePct } = resultOf(criterion);
+      const isOpen = levelDb === null && dosePct === null;
+      const isKnown = found.some(
+        (one) =>
+          isSameLaw(lawOf(one), lawOf(criterion)) && (isOpen || resultOf(one).bound === bound),
+      );
+      if (!isKnown) found.push(criterion);
     }
-    rows.push({
-      ...row("sum", [
-        { kind: "text", text: text(/*i18n*/ "Sum") },
-        minutes(this.evaluation.shiftMin),
-        null,
-        null,
-        null,
-        ...(law.isEnergy
-          ? [{ kind: "scientific", number: least / law.referenceMin } as const]
-          : [null, { kind: "dose", pct: 100 * least * doseScale(law) } as const]),
-      ]),
-      isTotal: true,
-    });
+    return found.map((criterion) => ({
+      criterion,
+      noise: new NoiseUnderLaw(input, criterion, resultOf(criterion)),
+      title: found.length > 1 ? text(criterion.label) : null,
+    }));
+  }
+
+  private atEarBound(): Bound | null {
+    const { outsideBound } = this.evaluation;
+    if (this.isWorn) return this.dayAtEar.bound;
+    return outsideBound === "exact" ? null : outsideBound;
+  }
+
+  private noiseStep(): Draft {
+    const parts = this.laws().map(({ noise, title, criterion }) =>
+      noise.byTasks(criterion === this.outside, title),
+    );
     return {
       title: text(/*i18n*/ "Noise without protection, over the day"),
-      tables: [{ columns, rows }],
-      equations: this.noiseEquations(least),
+      tables: parts.flatMap(({ tables }) => tables),
+      equations: parts.flatMap(({ lines }) => lines),
       notes: [
-        ...this.metricNotes(),
-        ...(isTable
-          ? [
-              text(
-                /*i18n*/ "The table is the rule: a level in between takes the time of the next higher row.",
-              ),
-            ]
-          : []),
+        ...unique(parts.flatMap(({ notes }) => notes)),
         ...(this.input.shifts.some((shift) => likenessFactor(shift) !== 1)
           ? [
               text(
@@ -375,111 +270,12 @@ class Builder {
     };
   }
 
-  private noiseCells(weight: number | null, durationMin: number): (WorkingValue | null)[] {
-    const { law } = this;
-    if (weight === null) return law.isEnergy ? [null] : [null, null];
-    if (law.isEnergy)
-      return [{ kind: "scientific", number: (durationMin * weight) / law.referenceMin }];
-    const perMinute = weight * doseScale(law);
-    return [
-      perMinute > 0 ? minutes(1 / perMinute) : null,
-      { kind: "dose", pct: 100 * durationMin * perMinute },
-    ];
-  }
-
-  private noiseEquations(sum: number): MathPart[][] {
-    const { law, outside } = this;
-    const result = sumDay(this.input, law).tasks;
-    // An open sum has no result; the verdicts say what is certain about it.
-    if (result.missing !== null || !(sum > 0)) return [];
-    if (law.isEnergy) {
-      return [
-        [
-          symbol("L", "EX,8h"),
-          sign("= 10 lg"),
-          SUM,
-          MINUTES_OVER_T0,
-          sign("·"),
-          power("10", [symbol("L"), sign("/10")]),
-          sign("= 10 lg ("),
-          value({ kind: "scientific", number: sum / law.referenceMin }),
-          sign(") ="),
-          value(level(10 * Math.log10(sum / law.referenceMin))!, true),
-        ],
-      ];
-    }
-    const dosePct = 100 * sum * doseScale(law);
-    const factor = outside.twaFactor ?? levelFactor(law);
-    return [
-      [
-        symbol("D"),
-        sign("= 100 ·"),
-        SUM,
-        fraction([symbol("T", "m")], [symbol("T", "L")]),
-        sign("="),
-        value({ kind: "dose", pct: dosePct }, true),
-      ],
-      [
-        symbol("TWA"),
-        sign("="),
-        value(number(law.criterionLevelDb)),
-        sign("+"),
-        value(number(factor)),
-        sign("lg ("),
-        value(number(dosePct)),
-        sign("/100) ="),
-        value(level(law.criterionLevelDb + factor * Math.log10(dosePct / 100))!, true),
-      ],
-    ];
-  }
-
-  private metricNotes(): WorkingText[] {
-    const { law } = this;
-    let isUpper = false;
-    let isLower = false;
-    let isAverage = false;
-    for (const { level: taskLevel } of this.tasks) {
-      if (!taskLevel) continue;
-      const least = leastWeight(taskLevel.metric, taskLevel.levelDb, law);
-      const most = mostWeight(taskLevel.metric, taskLevel.levelDb, law);
-      if (least !== most) {
-        if (most < Number.POSITIVE_INFINITY) isUpper = true;
-        else isLower = true;
-      }
-      if (taskLevel.metric.kind !== "steady" && law.thresholdDb !== null) isAverage = true;
-    }
-    return [
-      ...(isUpper
-        ? [
-            text(
-              /*i18n*/ "Unsteady noise is known by its energy mean: under this rule the sum is an upper estimate and may prove Under, never Over.",
-            ),
-          ]
-        : []),
-      ...(isLower
-        ? [
-            text(
-              /*i18n*/ "Some levels are means of a larger exchange rate: under this rule the sum is a lower estimate and may prove Over, never Under.",
-            ),
-          ]
-        : []),
-      ...(isAverage
-        ? [
-            text(
-              /*i18n*/ "The threshold of {threshold} dB rests on the slow level; a task's average can only bound what it leaves out.",
-              { threshold: number(law.thresholdDb!) },
-            ),
-          ]
-        : []),
-    ];
-  }
-
   private noiseSources(): WorkingSource[] {
     const { law } = this;
     if (law.isEnergy) return [{ id: "iso-9612-2009", clause: "9" }, this.ruleSource()];
-    if (law.table) return [{ id: "nr-15", clause: "Annex 1" }];
+    if (law.table) return [{ id: "nr-15", clause: /*i18n*/ "Annex 1" }];
     if (law.exchangeRateDb === 3) return [{ id: "niosh-98-126", clause: "1.1" }, this.ruleSource()];
-    return [{ id: "osha-1910.95", clause: "App. A" }, this.ruleSource()];
+    return [{ id: "osha-1910.95", clause: /*i18n*/ "App. A" }, this.ruleSource()];
   }
 
   private ruleSource(): WorkingSource {
@@ -519,24 +315,13 @@ class Builder {
         isEmphasized: governs,
       };
     });
-    const governing = readings.filter(
-      ({ shift, reading }) => governingReading(shift, law) === reading,
-    );
-    const sum = governing.reduce(
-      (total, { shift, reading }) => total + sumReading(reading, shift, law),
-      0,
-    );
-    const isWhole = governing.length === this.input.shifts.length && sum > 0;
-    const shownDb = isWhole
-      ? law.isEnergy
-        ? 10 * Math.log10(sum / law.referenceMin)
-        : evaluation.outsideDb
-      : null;
+    const parts = this.laws().map(({ noise, title }) => noise.byReadings(title));
     return [
       {
         title: text(/*i18n*/ "Readings on the worker"),
         tables: [
           {
+            title: null,
             columns: [
               column("settings", text(/*i18n*/ "Settings"), false),
               column("minutes", text(/*i18n*/ "Run time, minutes"), true),
@@ -547,14 +332,16 @@ class Builder {
             ],
             rows,
           },
+          ...parts.flatMap(({ tables }) => tables),
         ],
-        equations: shownDb === null ? [] : [[symbol("L"), sign("="), value(level(shownDb)!, true)]],
+        equations: parts.flatMap(({ lines }) => lines),
         notes: [
+          ...unique(parts.flatMap(({ notes }) => notes)),
           ...(evaluation.tasksDb !== null && evaluation.readingGapDb !== null
             ? [
                 text(/*i18n*/ "By tasks {tasks}: the reading is {gap} away.", {
-                  tasks: level(evaluation.tasksDb)!,
-                  gap: difference(evaluation.readingGapDb)!,
+                  tasks: level(evaluation.tasksDb),
+                  gap: difference(evaluation.readingGapDb),
                 }),
               ]
             : []),
@@ -587,7 +374,7 @@ class Builder {
     );
     if (!hasEnergy) return [];
     const { budget, parts, reason: why } = dayUncertainty(this.input);
-    const sources: WorkingSource[] = [{ id: "iso-9612-2009", clause: "Annex C" }];
+    const sources: WorkingSource[] = [{ id: "iso-9612-2009", clause: /*i18n*/ "Annex C" }];
     const title = text(/*i18n*/ "How sure that is");
     if (why !== null) {
       return [
@@ -607,14 +394,26 @@ class Builder {
       { label: text(/*i18n*/ "Sampling"), pct: (100 * budget.samplingDb2) / total },
       { label: text(/*i18n*/ "Duration"), pct: (100 * budget.durationDb2) / total },
     ];
-    const taskNames = new Map(this.tasks.map((task) => [task.taskId, task.name]));
     return [
       {
         title,
         sources,
         shares,
         equations: [
-          [
+          line([
+            symbol("u"),
+            sign("= √"),
+            SUM,
+            symbol("u", "m"),
+            sign("²"),
+            sign("="),
+            sign("√ ("),
+            value(number(total)),
+            sign(")"),
+            sign("="),
+            value(number(budget.combinedDb), true),
+          ]),
+          line([
             symbol("U"),
             sign("="),
             value(number(COVERAGE_FACTOR)),
@@ -625,31 +424,10 @@ class Builder {
             sign("·"),
             value(number(budget.combinedDb)),
             sign("="),
-            value(difference(budget.expandedDb)!, true),
-          ],
+            value(difference(budget.expandedDb), true),
+          ]),
         ],
-        tables: [
-          {
-            columns: [
-              column("part", text(/*i18n*/ "Task"), false),
-              symbolColumn("sensitivity", text(/*i18n*/ "Share of the energy"), [
-                symbol("c", "1a"),
-              ]),
-              symbolColumn("sampling", text(/*i18n*/ "Sampling, dB"), [symbol("u", "1a")]),
-              symbolColumn("instrument", text(/*i18n*/ "Instrument, dB"), [symbol("u", "2")]),
-            ],
-            rows: parts.map((part, index) =>
-              row(part.taskId ?? `reading-${index}`, [
-                part.taskId === null
-                  ? { kind: "text", text: text(/*i18n*/ "Reading of one day") }
-                  : name(taskNames.get(part.taskId) ?? part.taskId),
-                number(part.energyShare),
-                part.samplingDb === null ? null : number(part.samplingDb),
-                number(part.instrumentDb),
-              ]),
-            ),
-          },
-        ],
+        tables: [this.uncertaintyTable(parts, total)],
         notes: [
           ...(parts.some(({ samplingDb }) => samplingDb === null)
             ? [text(/*i18n*/ "A reading of one day carries instrument and position only.")]
@@ -660,6 +438,64 @@ class Builder {
         ],
       },
     ];
+  }
+
+  /** c1a²(u1a² + u2² + u3²) + (c1b·u1b)² of each part. */
+  private uncertaintyTable(parts: readonly BudgetPart[], total: number): WorkingTable {
+    const taskNames = new Map(this.tasks.map((task) => [task.taskId, task.name]));
+    const hasDuration = parts.some(({ durationUncertaintyMin }) => durationUncertaintyMin > 0);
+    const rows = parts.map((part, index) => {
+      const durationDb =
+        part.durationUncertaintyMin > 0
+          ? durationSensitivityDbPerMin(part.energyShare, part.durationMin) *
+            part.durationUncertaintyMin
+          : 0;
+      const own = (part.samplingDb ?? 0) ** 2 + part.instrumentDb ** 2 + POSITION_DB ** 2;
+      return row(part.taskId === null ? `reading-${index}` : `${part.taskId}-${index}`, [
+        part.taskId === null
+          ? words(text(/*i18n*/ "Reading of one day"))
+          : name(taskNames.get(part.taskId) ?? part.taskId),
+        number(part.energyShare),
+        part.samplingDb === null ? null : number(part.samplingDb),
+        number(part.instrumentDb),
+        number(POSITION_DB),
+        ...(hasDuration ? [number(durationDb)] : []),
+        number(part.energyShare ** 2 * own + durationDb ** 2),
+      ]);
+    });
+    return table(
+      [
+        column("part", text(/*i18n*/ "Task"), false),
+        symbolColumn("sensitivity", text(/*i18n*/ "Share of the energy"), [symbol("c", "1a")]),
+        symbolColumn("sampling", text(/*i18n*/ "Sampling, dB"), [symbol("u", "1a")]),
+        symbolColumn("instrument", text(/*i18n*/ "Instrument, dB"), [symbol("u", "2")]),
+        symbolColumn("position", text(/*i18n*/ "Position, dB"), [symbol("u", "3")]),
+        ...(hasDuration
+          ? [
+              symbolColumn("duration", text(/*i18n*/ "Duration, dB"), [
+                symbol("c", "1b"),
+                symbol("u", "1b"),
+              ]),
+            ]
+          : []),
+        symbolColumn("square", null, [symbol("u", "m"), sign("²")]),
+      ],
+      [
+        ...rows,
+        {
+          ...row("sum", [
+            words(text(/*i18n*/ "Sum")),
+            null,
+            null,
+            null,
+            null,
+            ...(hasDuration ? [null] : []),
+            number(total),
+          ]),
+          isTotal: true,
+        },
+      ],
+    );
   }
 
   private resultsJudged(judged: Criterion["judged"]): CriterionResult[] {
@@ -692,6 +528,7 @@ class Builder {
 
   private verdictTable(results: readonly CriterionResult[]): WorkingTable {
     return {
+      title: null,
       columns: [
         column("criterion", text(/*i18n*/ "Criterion"), false),
         column("test", text(/*i18n*/ "Test, unrounded"), false),
@@ -758,72 +595,92 @@ class Builder {
       isEmphasized: task.timedTaskId === this.evaluation.decidingTaskId,
     }));
     const methods = new Set(
-      this.evaluation.tasks.flatMap(({ governingMethod }) => governingMethod ?? []),
+      this.evaluation.tasks.flatMap((task) =>
+        task.methods.flatMap(({ method, atEarDb }) => (atEarDb === null ? [] : [method])),
+      ),
     );
     return {
       title: text(/*i18n*/ "What the protector does, while worn"),
-      tables: [{ columns, rows }],
-      equations: [...methods].map((method) => this.methodEquation(method)),
+      tables: [table(columns, rows)],
+      equations: this.methodEquations(),
+      details: this.protectorDetails(),
       notes: [...this.scaleNotes(), ...this.openNotes()],
       sources: [
-        ...[...methods].map((method) => METHOD_SOURCES[method]),
+        ...unique([...methods].flatMap((method) => this.methodSources(method))),
         ...(this.governing.protection.adequacy === "en-458"
-          ? [{ id: "en-458", clause: "Annex A" } as const]
+          ? [{ id: "en-458", clause: /*i18n*/ "Annex A" } as const]
           : []),
       ],
       records: this.protectorRecords(),
     };
   }
 
-  private methodEquation(method: AttenuationMethod): MathPart[] {
-    const { allowanceDb, derating } = this.governing.protection;
-    const start = [symbol("L", "A,m", true), sign("=")];
-    const allowance =
-      allowanceDb > 0 && method !== "own-fit" ? [sign("+"), value(number(allowanceDb))] : [];
-    switch (method) {
-      case "octave-band":
-        return [
-          ...start,
-          sign("10 lg"),
-          SUM,
-          power("10", [
-            sign("("),
-            symbol("L", "f"),
-            sign("+"),
-            symbol("A", "f"),
-            sign("−"),
-            symbol("m", "f"),
-            sign("+"),
-            value(number(this.governing.protection.alpha)),
-            symbol("s", "f"),
-            sign(")/10"),
-          ]),
-          ...allowance,
-        ];
-      case "hml":
-        return [...start, symbol("L", "A"), sign("−"), symbol("PNR"), ...allowance];
-      case "snr":
-        return [...start, symbol("L", "C"), sign("−"), symbol("SNR"), ...allowance];
-      case "slc80":
-        return [...start, symbol("L", "C"), sign("−"), symbol("SLC", "80"), ...allowance];
-      case "own-fit":
-        return [...start, symbol("L", "A"), sign("−"), symbol("PAR")];
-      case "us-single-number":
-        return [...start, ...this.usRatingParts(derating), ...allowance];
-    }
+  private methodSources(method: AttenuationMethod): WorkingSource[] {
+    const { derating } = this.governing.protection;
+    const isDouble = this.tasks.some(({ protection }) => protection?.outer);
+    if (method !== "us-single-number") return [METHOD_SOURCES[method]];
+    return [
+      METHOD_SOURCES[method],
+      ...(derating === "by-type" ? [{ id: "niosh-98-126", clause: "6" } as const] : []),
+      ...(derating === "half" || isDouble ? [{ id: "osha-otm", clause: "III:5" } as const] : []),
+    ];
   }
 
-  private usRatingParts(derating: RuleSetVersion["protection"]["derating"]): MathPart[] {
-    const rating = symbol("R");
-    const aWeighted = symbol("L", "A");
-    if (derating === "by-type") {
-      return [aWeighted, sign("− ("), symbol("d"), sign("·"), rating, sign("− 7)")];
-    }
-    if (derating === "half") return [aWeighted, sign("− ½ ("), rating, sign("− 7)")];
-    const isByC = this.tasks.some(({ level: taskLevel }) => taskLevel?.lcMinusLaDb != null);
-    return isByC
-      ? [symbol("L", "C"), sign("−"), rating]
-      : [aWeighted, sign("− ("), rating, sign("− 7)")];
+  /** Tasks in which a protector counts as worn, with what is known of them. */
+  private wornTasks() {
+    return this.evaluation.tasks.flatMap((atEar) => {
+      const task = this.tasks.find(({ id }) => id === atEar.timedTaskId);
+      if (!atEar.isWorn || !task?.level || !task.protection) return [];
+      return [{ atEar, task, level: task.level, protection: task.protection }];
+    });
+  }
+
+  private methodEquations(): Line[] {
+    const rule = this.governing.protection;
+    return this.wornTasks().flatMap(({ atEar, task, level: of, protection }) => {
+      const governing = atEar.methods.find(({ method }) => method === atEar.governingMethod);
+      if (!governing) return [];
+      return [
+        ...methodLines(of, protection, rule, governing),
+        ...activeLines(of, protection, rule, atEar),
+      ].map((parts) => line(parts, name(task.name)));
+    });
+  }
+
+  /** By band, and by the methods that do not govern. */
+  private protectorDetails(): NonNullable<Draft["details"]> {
+    const rule = this.governing.protection;
+    return this.wornTasks().flatMap(({ atEar, task, level: of, protection }) => {
+      const bands = bandTable(of, protection, rule, atEar);
+      const others = atEar.methods.filter(({ method }) => method !== atEar.governingMethod);
+      const equations = others.flatMap((other) =>
+        methodLines(of, protection, rule, other).map((parts) =>
+          line(parts, { kind: "method", method: other.method }),
+        ),
+      );
+      return [
+        ...(bands
+          ? [
+              {
+                id: `bands-${task.id}`,
+                title: text(/*i18n*/ "By band: {task}", { task: name(task.name) }),
+                tables: [bands],
+                equations: [],
+              },
+            ]
+          : []),
+        ...(equations.length > 0
+          ? [
+              {
+                id: `methods-${task.id}`,
+                title: text(/*i18n*/ "By other methods: {task}", { task: name(task.name) }),
+                tables: [],
+                equations,
+              },
+            ]
+          : []),
+      ];
+    });
   }
 
   private scaleNotes(): WorkingText[] {
@@ -834,7 +691,7 @@ class Builder {
       return [
         text(
           /*i18n*/ "Enough where the shift's TWA under the protector does not exceed {target}.",
-          { target: level(actionDb)! },
+          { target: level(actionDb) },
         ),
       ];
     }
@@ -843,10 +700,10 @@ class Builder {
       text(
         /*i18n*/ "Against the action value {action}: over {action} too little, {five} to {action} just enough, {ten} to {five} good, {fifteen} to {ten} on the strong side, under {fifteen} too much.",
         {
-          action: level(actionDb)!,
-          five: level(actionDb - 5)!,
-          ten: level(actionDb - 10)!,
-          fifteen: level(actionDb - 15)!,
+          action: level(actionDb),
+          five: level(actionDb - 5),
+          ten: level(actionDb - 10),
+          fifteen: level(actionDb - 15),
         },
       ),
     ];
@@ -902,43 +759,7 @@ class Builder {
   }
 
   private dayAtEarStep(): Draft {
-    const { evaluation, law } = this;
-    const k = number(levelFactor(law));
-    const factor = law.isEnergy ? sign("10") : value(k);
-    const equations: MathPart[][] = [
-      [
-        symbol("L", "m", true),
-        sign("="),
-        factor,
-        sign("lg ("),
-        symbol("f"),
-        sign("·"),
-        power("10", [symbol("L", "A,m", true), sign("/"), factor]),
-        sign("+ (1 −"),
-        symbol("f"),
-        sign(") ·"),
-        power("10", [symbol("L"), sign("/"), factor]),
-        sign(")"),
-      ],
-    ];
-    if (evaluation.atEarDb !== null) {
-      equations.push([
-        symbol("L", law.isEnergy ? "EX,8h" : "TWA", true),
-        sign("="),
-        factor,
-        sign("lg"),
-        SUM,
-        MINUTES_OVER_T0,
-        sign("·"),
-        power("10", [symbol("L", "m", true), sign("/"), factor]),
-        sign("="),
-        factor,
-        sign("lg ("),
-        value({ kind: "scientific", number: 10 ** (evaluation.atEarDb / levelFactor(law)) }),
-        sign(") ="),
-        value(level(evaluation.atEarDb)!, true),
-      ]);
-    }
+    const { evaluation } = this;
     const on = [
       [text(/*i18n*/ "Active part on all the time"), evaluation.atEarActiveDb],
       [text(/*i18n*/ "As worked, on while the battery lasts"), evaluation.atEarAsWorkedDb],
@@ -946,9 +767,11 @@ class Builder {
     const methodRows = this.dayByMethod();
     return {
       title: text(/*i18n*/ "The day at the ear, wearing time included"),
-      equations,
+      equations: evaluation.atEarDb === null ? [] : this.dayAtEarLines(),
       tables: [
+        ...(evaluation.atEarDb === null ? [] : [this.dayAtEarTable()]),
         {
+          title: null,
           columns: [
             column("method", text(/*i18n*/ "Method"), false),
             column("day", text(/*i18n*/ "Day at the ear, off"), true),
@@ -965,6 +788,7 @@ class Builder {
         },
       ],
       notes: [
+        ...this.dayAtEarNotes(),
         ...(this.readingGoverns()
           ? [
               text(
@@ -985,11 +809,249 @@ class Builder {
       sources: [
         { id: "wearing-time", clause: "" },
         ...(this.governing.protection.adequacy === "appendix-b"
-          ? [{ id: "osha-1910.95", clause: "App. B" } as const]
+          ? [{ id: "osha-1910.95", clause: /*i18n*/ "App. B" } as const]
           : []),
       ],
       records: [],
     };
+  }
+
+  private dayAtEarNotes(): WorkingText[] {
+    if (this.evaluation.atEarDb === null) return [];
+    const { rows, bound } = this.dayAtEar;
+    const isMoved = rows.some(
+      ({ task, bareDb }) =>
+        task?.level && bareDb !== null && Math.abs(task.level.levelDb - bareDb) > 1e-9,
+    );
+    return [
+      ...(isMoved
+        ? [
+            text(
+              /*i18n*/ "Where a level counts by a bound of it, the protector takes as much off the bound.",
+            ),
+          ]
+        : []),
+      ...(rows.some(({ bareDb, atEar }) => bareDb === null && !atEar?.isWorn)
+        ? [
+            text(
+              /*i18n*/ "Time without a protector counts at the ear as it does without protection: below the threshold not at all.",
+            ),
+          ]
+        : []),
+      ...(bound === "upper"
+        ? [text(/*i18n*/ "The level at the ear is an upper bound: the true one is no higher.")]
+        : []),
+      ...(bound === "lower"
+        ? [text(/*i18n*/ "The level at the ear is a lower bound: the true one is no lower.")]
+        : []),
+    ];
+  }
+
+  private dayAtEarTable(): WorkingTable {
+    const day = this.dayAtEar;
+    const k = this.factorPart();
+    const hasScale = day.rows.some(({ scale }) => scale !== 1);
+    const hasActive = this.evaluation.atEarActiveDb !== null;
+    const hasBattery = hasActive && this.evaluation.atEarAsWorkedDb !== null;
+    const termOf = (sub: string, isAtEar: boolean): MathPart[] => [
+      ...(hasScale && isAtEar ? [symbol("s"), sign("·")] : []),
+      MINUTES_OVER_T0,
+      sign("·"),
+      power("10", [symbol("L", sub, isAtEar), sign("/"), k]),
+    ];
+    const columns = [
+      column("task", text(/*i18n*/ "Task"), false),
+      symbolColumn("minutes", text(/*i18n*/ "Minutes"), [symbol("T", "m")]),
+      symbolColumn("bare", text(/*i18n*/ "Outside, dB"), [symbol("L", "m")]),
+      ...(hasScale ? [symbolColumn("bare-term", null, termOf("m", false))] : []),
+      column("worn", text(/*i18n*/ "Worn"), true),
+      symbolColumn("in-task", text(/*i18n*/ "In the task, dB"), [symbol("L", "m", true)]),
+      symbolColumn("term", null, termOf("m", true)),
+      ...(hasActive
+        ? [
+            symbolColumn("in-task-on", text(/*i18n*/ "In the task, on, dB"), [
+              symbol("L", "m,on", true),
+            ]),
+            symbolColumn("term-on", null, termOf("m,on", true)),
+          ]
+        : []),
+      ...(hasBattery ? [column("as-worked", text(/*i18n*/ "As worked"), true)] : []),
+    ];
+    const cellsOf = (cells: Record<string, WorkingValue | null>) =>
+      columns.map(({ id }) => cells[id] ?? null);
+    const bareTerm = (one: TimeAtEar) => day.term({ ...one, scale: 1 }, one.bareDb);
+    const total = (of: (one: TimeAtEar) => number) =>
+      scientific(day.rows.reduce((sum, one) => sum + of(one), 0));
+    const rows = day.rows.map((one) =>
+      row(
+        one.id,
+        cellsOf({
+          task: one.task ? name(one.task.name) : words(text(/*i18n*/ "Quiet, as stated")),
+          minutes: minutes(one.minutes),
+          bare: level(one.bareDb),
+          "bare-term": scientific(bareTerm(one)),
+          worn: share(100 * one.worn),
+          "in-task": level(one.offDb),
+          term: scientific(day.term(one, one.offDb)),
+          "in-task-on": level(one.onDb),
+          "term-on": scientific(day.term(one, one.onDb)),
+          "as-worked": scientific(day.asWorkedTerm(one) ?? 0),
+        }),
+      ),
+    );
+    const sum = row(
+      "sum",
+      cellsOf({
+        task: words(text(/*i18n*/ "Sum")),
+        minutes: minutes(day.rows.reduce((min, one) => min + one.minutes, 0)),
+        "bare-term": total(bareTerm),
+        term: total((one) => day.term(one, one.offDb)),
+        "term-on": total((one) => day.term(one, one.onDb)),
+        "as-worked": total((one) => day.asWorkedTerm(one) ?? 0),
+      }),
+    );
+    return table(columns, [...rows, { ...sum, isTotal: true }]);
+  }
+
+  private factorPart(): MathPart {
+    return this.law.isEnergy ? sign("10") : value(number(levelFactor(this.law)));
+  }
+
+  private dayAtEarLines(): Line[] {
+    const { evaluation, law } = this;
+    const day = this.dayAtEar;
+    const k = this.factorPart();
+    const asPower = (exponent: MathPart): MathPart => power("10", [exponent, sign("/"), k]);
+    const wornParts = day.rows.flatMap((one): Line[] => {
+      if (one.bareDb === null || one.worn === 1 || one.worn === 0 || !one.task) return [];
+      const mix = (whileWornDb: number, resultDb: number, sub: string): Line =>
+        line(
+          [
+            symbol("L", sub, true),
+            sign("="),
+            k,
+            sign("lg ("),
+            symbol("f"),
+            sign("·"),
+            asPower(symbol("L", `A,${sub}`, true)),
+            sign("+ (1 −"),
+            symbol("f"),
+            sign(") ·"),
+            asPower(symbol("L", "m")),
+            sign(")"),
+            sign("="),
+            k,
+            sign("lg ("),
+            value(number(one.worn)),
+            sign("·"),
+            asPower(value(level(whileWornDb))),
+            sign("+"),
+            value(number(1 - one.worn)),
+            sign("·"),
+            asPower(value(level(one.bareDb!))),
+            sign(")"),
+            sign("="),
+            value(level(resultDb), true),
+          ],
+          name(one.task!.name),
+        );
+      const { atEar } = one;
+      const lines = one.wornDb === null ? [] : [mix(one.wornDb, one.offDb!, "m")];
+      if (atEar?.wornActiveDb != null && atEar.wornDb !== null) {
+        lines.push(mix(one.wornDb! - (atEar.wornDb - atEar.wornActiveDb), one.onDb!, "m,on"));
+      }
+      return lines;
+    });
+    const isSeveral = day.shifts.length > 1;
+    const shiftParts = day.shifts.flatMap((shift, index): Line[] => {
+      const label = isSeveral
+        ? words(text(/*i18n*/ "Shift {number}", { number: number(index + 1) }))
+        : null;
+      const lines: Line[] = [];
+      if (shift.readingSum !== null && shift.tasksSum !== null) {
+        const readingMean = shift.readingSum / law.referenceMin;
+        const tasksMean = shift.tasksSum / law.referenceMin;
+        lines.push(
+          line(
+            [
+              symbol("s"),
+              sign("="),
+              fraction([value(scientific(readingMean))], [value(scientific(tasksMean))]),
+              sign("="),
+              value(number(readingMean / tasksMean), true),
+            ],
+            label,
+          ),
+        );
+      }
+      if (evaluation.atEarAsWorkedDb !== null && shift.powered !== null && shift.powered < 1) {
+        lines.push(
+          line(
+            [
+              symbol("p"),
+              sign("="),
+              fraction([value(minutes(shift.batteryMin!))], [value(minutes(shift.activeWornMin))]),
+              sign("="),
+              value(number(shift.powered), true),
+            ],
+            label,
+          ),
+        );
+      }
+      return lines;
+    });
+    const dayLine = (sum: number, levelDb: number, label: WorkingValue | null): Line =>
+      line(
+        [
+          symbol("L", law.isEnergy ? "EX,8h" : "TWA", true),
+          sign(day.bound === null ? "=" : day.bound === "upper" ? "≤" : "≥"),
+          k,
+          sign("lg"),
+          SUM,
+          ...(day.rows.some(({ scale }) => scale !== 1) ? [symbol("s"), sign("·")] : []),
+          MINUTES_OVER_T0,
+          sign("·"),
+          asPower(symbol("L", "m", true)),
+          sign("="),
+          k,
+          sign("lg ("),
+          value(scientific(sum)),
+          sign(")"),
+          sign("="),
+          value(level(levelDb), true),
+        ],
+        label,
+      );
+    const total = (of: (one: TimeAtEar) => number) =>
+      day.rows.reduce((sum, one) => sum + of(one), 0);
+    const { atEarActiveDb, atEarAsWorkedDb } = evaluation;
+    return [
+      ...wornParts,
+      ...shiftParts,
+      ...(atEarActiveDb === null
+        ? []
+        : [
+            dayLine(
+              total((one) => day.term(one, one.onDb)),
+              atEarActiveDb,
+              words(text(/*i18n*/ "Active part on all the time")),
+            ),
+          ]),
+      ...(atEarAsWorkedDb === null
+        ? []
+        : [
+            dayLine(
+              total((one) => day.asWorkedTerm(one) ?? 0),
+              atEarAsWorkedDb,
+              words(text(/*i18n*/ "As worked, on while the battery lasts")),
+            ),
+          ]),
+      dayLine(
+        total((one) => day.term(one, one.offDb)),
+        evaluation.atEarDb!,
+        atEarActiveDb === null ? null : words(text(/*i18n*/ "Active part off")),
+      ),
+    ];
   }
 
   private readingGoverns(): boolean {
@@ -999,7 +1061,6 @@ class Builder {
   /** The whole day by each method alone, protectors on where they are worn; null where a task lacks it. */
   private dayByMethod(): WorkingRow[] {
     const { evaluation } = this;
-    const seen = new Map(evaluation.tasks.map((task) => [task.timedTaskId, task]));
     const methods = [
       ...new Set(evaluation.tasks.flatMap((task) => task.methods.map(({ method }) => method))),
     ];
@@ -1009,7 +1070,7 @@ class Builder {
     const isSole = governing.size === 1;
     return methods.map((method) => {
       const why = this.whyNotByMethod(method);
-      const db = why || evaluation.atEarDb === null ? null : this.levelByMethod(method, seen);
+      const db = why || evaluation.atEarDb === null ? null : this.dayAtEar.byMethod(method);
       const governs = governing.has(method);
       return {
         ...row(method, [
@@ -1045,44 +1106,6 @@ class Builder {
     return null;
   }
 
-  private levelByMethod(
-    method: AttenuationMethod,
-    seen: ReadonlyMap<string, DayEvaluation["tasks"][number]>,
-  ): number {
-    const { law, evaluation } = this;
-    const factor = levelFactor(law);
-    const byGoverning = this.relativeSum(seen, (task) => task.wornDb);
-    const byMethod = this.relativeSum(
-      seen,
-      (task) => task.methods.find((one) => one.method === method)?.atEarDb ?? null,
-    );
-    return evaluation.atEarDb! + factor * Math.log10(byMethod / byGoverning);
-  }
-
-  private relativeSum(
-    seen: ReadonlyMap<string, DayEvaluation["tasks"][number]>,
-    wornDbOf: (task: DayEvaluation["tasks"][number]) => number | null,
-  ): number {
-    const { law } = this;
-    let sum = 0;
-    for (const shift of this.input.shifts) {
-      for (const { id, durationMin, level: taskLevel } of shift.tasks) {
-        const task = seen.get(id);
-        if (!task || !taskLevel) continue;
-        const wornDb = task.isWorn ? wornDbOf(task) : null;
-        const inTaskDb =
-          wornDb === null
-            ? taskLevel.levelDb
-            : wornShareLevelDb(taskLevel.levelDb, wornDb, task.wornPct ?? 100, levelFactor(law));
-        sum += durationMin * likenessFactor(shift) * weightOf(inTaskDb, law);
-      }
-      if (shift.unaccounted.how === "quiet") {
-        sum += unaccountedMin(shift) * weightOf(shift.unaccounted.levelDb, law);
-      }
-    }
-    return sum;
-  }
-
   private atEarVerdictStep(): Draft[] {
     return this.resultsJudged("at-the-ear").length === 0 ? [] : [this.verdictStep("at-the-ear")];
   }
@@ -1108,6 +1131,7 @@ class Builder {
         title: text(/*i18n*/ "By other rule sets, for comparison"),
         tables: [
           {
+            title: null,
             columns: [
               column("rule-set", text(/*i18n*/ "Rule set"), false),
               column("criterion", text(/*i18n*/ "Criterion"), false),
@@ -1138,8 +1162,11 @@ class Builder {
   }
 }
 
-const SUM: MathPart = { kind: "sum" };
-const MINUTES_OVER_T0: MathPart = fraction([symbol("T", "m")], [symbol("T", "0")]);
+const RESPONSES = {
+  slow: /*i18n*/ "slow",
+  fast: /*i18n*/ "fast",
+  none: /*i18n*/ "no time weighting",
+} as const;
 
 const COVERS = {
   shift: text(/*i18n*/ "the shift"),
@@ -1151,8 +1178,8 @@ const METHOD_SOURCES: Readonly<Record<AttenuationMethod, WorkingSource>> = {
   "octave-band": { id: "iso-4869-2", clause: "6" },
   hml: { id: "iso-4869-2", clause: "7" },
   snr: { id: "iso-4869-2", clause: "8" },
-  "us-single-number": { id: "osha-1910.95", clause: "App. B" },
-  slc80: { id: "as-nzs-1270", clause: "App. A" },
+  "us-single-number": { id: "osha-1910.95", clause: /*i18n*/ "App. B" },
+  slc80: { id: "as-nzs-1270", clause: /*i18n*/ "App. A" },
   "own-fit": { id: null, clause: "" },
 };
 
@@ -1163,6 +1190,7 @@ function testOf(result: CriterionResult, criterion: Criterion): WorkingValue | n
   if (amount === null) return result.reason ? reason(result.reason) : null;
   const shown = (number: number): WorkingValue =>
     isDose ? { kind: "dose", pct: number } : { kind: "level", db: number };
+  const bound = result.bound === "exact" ? null : result.bound;
   const [past, notPast] = criterion.comparator === "exceeds" ? [">", "≤"] : ["≥", "<"];
   const isOver = result.verdict === "over";
   const limit = value(limitValue(criterion));
@@ -1170,8 +1198,7 @@ function testOf(result: CriterionResult, criterion: Criterion): WorkingValue | n
   // An upper bound past the limit proves nothing, and neither does a lower one short of it: each is shown as what it is.
   const isOpenUpper = result.verdict !== "under" && !isOver && result.bound === "upper";
   const parts: MathPart[] = [
-    ...(result.bound === "exact" ? [] : [sign(result.bound === "upper" ? "≤" : "≥")]),
-    value(shown(amount)),
+    value(bounded(shown(amount), bound)),
     sign(isOver || isOpenUpper ? past : notPast),
     limit,
   ];
@@ -1183,7 +1210,7 @@ function testOf(result: CriterionResult, criterion: Criterion): WorkingValue | n
       sign(","),
       value(shown(amount)),
       sign(isOver ? "−" : "+"),
-      value(difference(uncertaintyDb)!),
+      value(difference(uncertaintyDb)),
       sign("="),
       value(shown(withDb)),
       sign(isWithPast ? past : notPast),
@@ -1216,15 +1243,6 @@ function worstOf(results: readonly CriterionResult[]): CriterionResult | undefin
   }, undefined);
 }
 
-function leastOrMost(
-  metric: NonNullable<TimedTask["level"]>["metric"],
-  levelDb: number,
-  law: ExchangeLaw,
-): number {
-  const most = mostWeight(metric, levelDb, law);
-  return most < Number.POSITIVE_INFINITY ? most : leastWeight(metric, levelDb, law);
-}
-
 function settingsText(
   settings: DayInput["shifts"][number]["readings"][number]["settings"],
 ): WorkingText {
@@ -1232,7 +1250,7 @@ function settingsText(
     criterion: number(settings.criterionLevelDb),
     exchange: number(settings.exchangeRateDb),
     weighting: name(settings.weighting),
-    response: name(settings.response),
+    response: words(text(RESPONSES[settings.response])),
   };
   return settings.thresholdDb === null
     ? text(
@@ -1246,85 +1264,4 @@ function settingsText(
           threshold: number(settings.thresholdDb),
         },
       );
-}
-
-function text(id: string, values?: Readonly<Record<string, WorkingValue>>): WorkingText {
-  return values ? { id, values } : { id };
-}
-
-function column(id: string, title: WorkingText | null, isNumeric: boolean): WorkingColumn {
-  return { id, title, symbol: null, isNumeric };
-}
-
-function symbolColumn(
-  id: string,
-  title: WorkingText | null,
-  parts: readonly MathPart[],
-): WorkingColumn {
-  return { id, title, symbol: parts, isNumeric: true };
-}
-
-function row(id: string, cells: readonly (WorkingValue | null)[]): WorkingRow {
-  return { id, cells, isTotal: false, isEmphasized: false };
-}
-
-function level(db: number | null): WorkingValue | null {
-  return db === null ? null : { kind: "level", db };
-}
-
-function difference(db: number | null): WorkingValue | null {
-  return db === null ? null : { kind: "difference", db };
-}
-
-function minutes(min: number): WorkingValue {
-  return { kind: "minutes", min };
-}
-
-function share(pct: number | null): WorkingValue | null {
-  return pct === null ? null : { kind: "share", pct };
-}
-
-function number(of: number): WorkingValue {
-  return { kind: "number", number: of };
-}
-
-function name(of: string): WorkingValue {
-  return { kind: "name", name: of };
-}
-
-function reason(of: Reason | UncertaintyReason): WorkingValue {
-  return { kind: "reason", reason: of };
-}
-
-function word(of: ProtectorWord | null): WorkingValue | null {
-  return of === null ? null : { kind: "protector-word", word: of };
-}
-
-function verdict(result: CriterionResult): WorkingValue {
-  return { kind: "verdict", verdict: result.verdict, isClear: result.isClear };
-}
-
-function sign(signs: string): MathPart {
-  return { kind: "sign", text: signs };
-}
-
-function symbol(base: string, sub?: string, isAtEar?: boolean): MathPart {
-  return { kind: "symbol", base, ...(sub ? { sub } : {}), ...(isAtEar ? { isAtEar } : {}) };
-}
-
-function value(of: WorkingValue, isResult?: boolean): MathPart {
-  return { kind: "value", value: of, ...(isResult ? { isResult } : {}) };
-}
-
-function fraction(over: readonly MathPart[], under: readonly MathPart[]): MathPart {
-  return { kind: "fraction", over, under };
-}
-
-function power(base: string, exponent: readonly MathPart[]): MathPart {
-  return { kind: "power", base, exponent };
-}
-
-function unique<T>(items: readonly T[]): T[] {
-  const seen = new Map(items.map((item) => [JSON.stringify(item), item]));
-  return [...seen.values()];
 }

@@ -1,5 +1,6 @@
 import { describe, expect, test } from "vitest";
-import { evaluateDay, outsideCriterion } from "../../shared/acoustics/day";
+import { evaluateDay } from "../../shared/acoustics/day";
+import { outsideCriterion } from "../../shared/acoustics/outside-criterion";
 import { dosePct, twaDb } from "../../shared/acoustics/dose";
 import { lexWeeklyDb } from "../../shared/acoustics/exposure";
 import { activeAttenuationDb } from "../../shared/acoustics/protection/active";

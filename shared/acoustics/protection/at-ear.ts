@@ -179,7 +179,7 @@ interface Scale {
   readonly missing: Reason | null;
 }
 
-function scaleOf(
+export function scaleOf(
   shift: ShiftInput,
   day: DayInput,
   law: ExchangeLaw,
@@ -210,11 +210,11 @@ function scaleOf(
 }
 
 /** What a minute at a level weighs, as if it hardly moved. */
-function steadyWeight(levelDb: number, law: ExchangeLaw): number {
+export function steadyWeight(levelDb: number, law: ExchangeLaw): number {
   return leastWeight({ kind: "steady" }, levelDb, law);
 }
 
-function quietSum(shift: ShiftInput, law: ExchangeLaw): number {
+export function quietSum(shift: ShiftInput, law: ExchangeLaw): number {
   return shift.unaccounted.how === "quiet"
     ? unaccountedMin(shift) * steadyWeight(shift.unaccounted.levelDb, law)
     : 0;
@@ -276,13 +276,13 @@ function servesAsItStands({ metric }: TaskLevel, law: ExchangeLaw): boolean {
   );
 }
 
-function leastAtEar(level: TaskLevel, law: ExchangeLaw): number {
+export function leastAtEar(level: TaskLevel, law: ExchangeLaw): number {
   return servesAsItStands(level, law)
     ? weightOf(level.levelDb, law)
     : leastWeight(level.metric, level.levelDb, law);
 }
 
-function mostAtEar(level: TaskLevel, law: ExchangeLaw): number {
+export function mostAtEar(level: TaskLevel, law: ExchangeLaw): number {
   return servesAsItStands(level, law)
     ? weightOf(level.levelDb, law)
     : mostWeight(level.metric, level.levelDb, law);

@@ -39,7 +39,7 @@ export interface Reduction {
   readonly reason: Reason | null;
 }
 
-const DERATINGS: Readonly<Record<ProtectionRule["derating"], Derating>> = {
+export const DERATINGS: Readonly<Record<ProtectionRule["derating"], Derating>> = {
   none: NO_DERATING,
   half: OSHA_HALF,
   "by-type": NIOSH_BY_TYPE,

@@ -1,0 +1,17 @@
+import type { Criterion, RuleSetVersion } from "./types";
+
+/**
+ * The criterion whose level stands for the noise without protection: the first action value, whose threshold hides
+ * least, else the limit.
+ */
+export function outsideCriterion(ruleSet: RuleSetVersion): Criterion {
+  let limit: Criterion | undefined;
+  for (const criterion of ruleSet.criteria) {
+    const { quantity, kind } = criterion;
+    if (quantity === "slow-maximum" || quantity === "peak" || quantity === "lex-weekly") continue;
+    if (criterion.judged === "without-protection" && kind === "action") return criterion;
+    if (kind === "limit") limit ??= criterion;
+  }
+  if (!limit) throw new RangeError(`Rule set ${ruleSet.key} has neither action value nor limit`);
+  return limit;
+}
