@@ -5,6 +5,8 @@ import { resultsAndFindings } from "./20261201090300-results-and-findings";
 import { indexes } from "./20261201090400-indexes";
 import { measurements } from "./20261201100000-measurements";
 import { rulesChangedSteps } from "./20261201110000-rules-changed-steps";
+import { historyImports } from "./20261201120000-history-imports";
+import { recordings } from "./20261201130000-recordings";
 
 /** In the order in which they run. */
 export const migrations = [
@@ -15,4 +17,6 @@ export const migrations = [
   indexes,
   measurements,
   rulesChangedSteps,
+  historyImports,
+  recordings,
 ];

@@ -13,6 +13,11 @@ import { lockFolder, projectFolder } from "./lib/project.mjs";
 import { hashSources } from "./lib/sources.mjs";
 
 const entryPoints = ["web", "work", "migrate", "setup", "seed-demo", "backup", "restore"];
+/** What runs in threads, each a file beside the entry points (server/lib/run-worker.ts). */
+const threads = {
+  "history-worker": "histories/history-worker",
+  "analyse-worker": "recordings/analyse-worker",
+};
 const dist = join(projectFolder, "dist");
 const recordFile = join(dist, "build.json");
 
@@ -26,7 +31,10 @@ async function bundleServer(folder) {
   await bundle({
     absWorkingDir: projectFolder,
     // One file each, not shared chunks: code that looks for files beside itself finds dist/server.
-    entryPoints: entryPoints.map((name) => `server/${name}.ts`),
+    entryPoints: Object.fromEntries([
+      ...entryPoints.map((name) => [name, `server/${name}.ts`]),
+      ...Object.entries(threads).map(([name, file]) => [name, `server/${file}.ts`]),
+    ]),
     outdir: folder,
     bundle: true,
     packages: "external",

@@ -2,7 +2,9 @@ import { randomUUID } from "node:crypto";
 import { setTimeout as sleep } from "node:timers/promises";
 import { Logger, parseCronItems, run, type TaskList } from "graphile-worker";
 import { configOrExit } from "./config";
+import { analyseStoredRecording } from "./jobs/analyse-recording";
 import { lookAfter } from "./jobs/look-after";
+import { readHistoryImport } from "./jobs/read-history";
 import { recomputeStaleDays } from "./jobs/recompute-stale-days";
 import { sendNotice } from "./jobs/send-notice";
 import { sealEvents } from "./lib/audit";
@@ -42,6 +44,8 @@ const taskList: TaskList = {
     recomputeStaleDays(organizationId, () => isStopping),
   ),
   "send-notice": job("send-notice", (payload) => sendNotice(payload, mailer, config.PUBLIC_URL)),
+  "read-history": job("read-history", (payload) => readHistoryImport(payload)),
+  "analyse-recording": job("analyse-recording", (payload) => analyseStoredRecording(payload)),
   "look-after": job("look-after", () => lookAfter()),
 };
 

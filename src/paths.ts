@@ -11,6 +11,15 @@ export const paths = {
   imports: "/days/import",
   workers: "/workers",
   worker: (id: string) => `/workers/${id}`,
+  /** Where a protector is assigned, with what is proposed filled in. */
+  assign: (
+    workerId: string,
+    { modelIds, taskIds }: { modelIds: readonly string[]; taskIds: readonly string[] },
+  ) => {
+    const [taskId] = taskIds;
+    const use = taskId === undefined ? "" : `&use=${encodeURIComponent(`task ${taskId}`)}`;
+    return `/workers/${workerId}?assign=${modelIds.join(",")}${use}#protectors`;
+  },
   newWorker: "/workers/new",
   changeWorker: (id: string) => `/workers/${id}/change`,
   result: (workerId: string, date: string) => `/workers/${workerId}/days/${date}`,

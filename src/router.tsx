@@ -133,7 +133,7 @@ export function createRoutes(queryClient: QueryClient, i18n: I18n): RouteObject[
               "auditor",
               "supervisor",
             ]),
-            withWords(["measuring", "office", "rules"], measuringRoutes, ["officer", "auditor"]),
+            withWords(["measuring", "register", "office", "rules"], measuringRoutes, ["officer", "auditor"]),
             withWords(["people", "rules"], peopleRoutes, []),
             pageRoute("*", () => import("./routes/not-found")),
           ],

@@ -7,7 +7,7 @@ import { PEOPLE } from "../demo/people";
 import { INSTRUMENTS, ORGANIZATION, SITES, type SiteKey } from "../demo/programme";
 import { daysBetween } from "./calendar";
 import { computeDays, enterDay, staleDays, storeDays } from "./days";
-import { markSent, tellInThePast } from "./notices";
+import { leaveSomeToTell, markSent, tellInThePast } from "./notices";
 import { writePeopleFile } from "./people-file";
 import { Demo, known, layOutProgramme } from "./programme";
 import { takeStep } from "./steps";
@@ -85,6 +85,7 @@ export async function layOutDemo({
   }
   await tellOfCalibration(demo);
   await markSent(demo, now, publicUrl);
+  await leaveSomeToTell(demo);
   const file = writePeopleFile(demo, dataFolder);
   return summarize(demo, file);
 }

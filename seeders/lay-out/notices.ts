@@ -1,4 +1,5 @@
 import { randomUUID } from "node:crypto";
+import { queueNotice } from "../../server/commands/schedule-notices";
 import type { OpenedFinding } from "../../server/commands/update-findings";
 import { noticeMail } from "../../server/jobs/send-notice";
 import { execute, rows } from "../../server/lib/db";
@@ -149,4 +150,53 @@ export async function markSent(demo: Demo, by: Date, publicUrl: string): Promise
       });
     }
   });
+}
+
+/** An attempt of which nobody knows how it ended, and its one repetition. */
+const CUT_OFF = "connection lost after the message was handed over";
+const ATTEMPTS = 2;
+const DAY_MS = 86_400_000;
+/** As long as the officer's page shows what did not arrive. */
+const TROUBLE_SHOWN_DAYS = 30;
+
+/**
+ * However late in the day the demo is filled, each site has an entry of a minute ago, whose people are still to be told,
+ * and one before it of which a notice may not have arrived.
+ */
+export async function leaveSomeToTell(demo: Demo): Promise<void> {
+  const { now } = demo;
+  for (const site of Object.keys(SITES) as SiteKey[]) {
+    const entered = new Date(now.getTime() - MINUTE_MS);
+    const notBefore = new Date(entered.getTime() + SITES[site].noticeDelayMin * MINUTE_MS);
+    await demo.at(now, async () => {
+      const found = await rows<{
+        entryId: string;
+        ids: string[];
+        supervisorNoticeId: string | null;
+      }>(
+        `SELECT n.entry_id AS "entryId", array_agg(n.id) AS ids, (array_agg(n.id ORDER BY n.id) FILTER (WHERE n.audience = 'supervisor'))[1] AS "supervisorNoticeId"
+         FROM notices n WHERE n.site_id = :siteId AND n.state IN ('waiting', 'sent') AND n.created_at > CAST(:since AS timestamptz)
+           AND EXISTS (SELECT 1 FROM notice_items i JOIN findings f ON f.id = i.finding_id WHERE i.notice_id = n.id AND f.state <> 'closed')
+         GROUP BY n.entry_id ORDER BY max(n.created_at) DESC, n.entry_id LIMIT 5`,
+        {
+          siteId: known(demo.sites, site).id,
+          since: new Date(now.getTime() - TROUBLE_SHOWN_DAYS * DAY_MS).toISOString(),
+        },
+      );
+      const [latest, ...before] = found;
+      for (const id of latest?.ids ?? []) {
+        await execute(
+          `UPDATE notices SET state = 'waiting', created_at = $2, not_before = $3, attempted_at = NULL, sent_at = NULL, tries = 0,
+             last_error = NULL, subject = NULL, body_text = NULL, body_html = NULL, revision = 1 WHERE id = $1`,
+          [id, entered.toISOString(), notBefore.toISOString()],
+        );
+        await queueNotice(demo.organizationId, id, notBefore);
+      }
+      const unsure = before.find(({ supervisorNoticeId }) => supervisorNoticeId !== null);
+      await execute(
+        `UPDATE notices SET state = 'possibly-sent', sent_at = NULL, tries = $2, unknown_outcomes = $2, last_error = $3 WHERE id = $1`,
+        [unsure?.supervisorNoticeId ?? null, ATTEMPTS, CUT_OFF],
+      );
+    });
+  }
 }

@@ -243,8 +243,8 @@ async function bindWorker(
   if (code.usedAt) throw unprocessable([issue(["code"], "code-used")]);
   if (code.isExpired) throw unprocessable([issue(["code"], "code-expired")]);
   return inTransaction({ organizationId: code.organizationId }, async () => {
-    const worker = await row<{ id: string; name: string; language: string }>(
-      "SELECT id, name, language FROM workers WHERE id = :workerId AND lower(employee_number) = lower(:employeeNumber)",
+    const worker = await row<{ id: string; siteId: string; name: string; language: string }>(
+      'SELECT id, site_id AS "siteId", name, language FROM workers WHERE id = :workerId AND lower(employee_number) = lower(:employeeNumber)',
       { workerId: code.workerId, employeeNumber: input.employeeNumber.trim() },
     );
     if (!worker) throw unknown();
@@ -276,9 +276,10 @@ async function bindWorker(
       pending.subject,
     ]);
     await execute(
-      `INSERT INTO role_grants (organization_id, user_id, role) SELECT $1, $2, 'worker'
-       WHERE NOT EXISTS (SELECT 1 FROM role_grants WHERE user_id = $2 AND role = 'worker' AND revoked_at IS NULL)`,
-      [code.organizationId, user.id],
+      `INSERT INTO role_grants (organization_id, user_id, role, site_id) SELECT $1, $2, 'worker', $3::uuid
+       WHERE NOT EXISTS (SELECT 1 FROM role_grants WHERE user_id = $2 AND role = 'worker' AND revoked_at IS NULL
+         AND (site_id IS NULL OR site_id = $3::uuid))`,
+      [code.organizationId, user.id, worker.siteId],
     );
     await recordAudit(
       { organizationId: code.organizationId },

@@ -1,8 +1,9 @@
 import type { TaskLevelInput } from "../../shared/schemas/task";
 import { recordAudit } from "../lib/audit";
 import { dateIssues } from "../lib/calendar";
-import { execute, row } from "../lib/db";
+import { execute, row, rows } from "../lib/db";
 import { issue, unprocessable } from "../lib/errors";
+import { only } from "../lib/only";
 import type { Actor } from "../lib/policy";
 import type { Task } from "../models/task";
 import { markDaysStale } from "./mark-days-stale";
@@ -14,7 +15,7 @@ export async function addTaskLevel(
   input: TaskLevelInput,
   under: string[] = [],
 ): Promise<void> {
-  const number = await insertTaskLevel(actor, task, input, under);
+  const number = await insertTaskLevel(actor, task, input, { under });
   await recordAudit(actor, {
     action: "add-task-level",
     subjectKind: "task",
@@ -24,12 +25,33 @@ export async function addTaskLevel(
   await markDaysStale(actor.organizationId, { taskId: task.id, fromDate: input.effectiveFrom });
 }
 
+/** The survey that a level rests on, and each sample's own run. */
+export interface LevelSurvey {
+  surveyId: string;
+  strategy: "task" | "job" | "full-day";
+  keptReasons: readonly string[];
+  samples: readonly {
+    runId: string;
+    runRevisionId: string;
+    fromS: number | null;
+    toS: number | null;
+    levelDb: number;
+  }[];
+}
+
+interface LevelSource {
+  under?: string[];
+  survey?: LevelSurvey | null;
+  /** The recording that it, or its spectrum, comes from. */
+  recording?: { recordingId: string; keptReasons: readonly string[] } | null;
+}
+
 /** The row alone, for the change itself and for its preview. */
 export async function insertTaskLevel(
   actor: Actor,
   task: Task,
   input: TaskLevelInput,
-  under: string[] = [],
+  { under = [], survey = null, recording = null }: LevelSource = {},
 ): Promise<number> {
   const last = await row<{ number: number }>(
     "SELECT coalesce(max(number), 0) AS number FROM task_levels WHERE task_id = :id",
@@ -40,10 +62,10 @@ export async function insertTaskLevel(
   if (number > 1 && input.reason === null)
     issues.push(issue([...under, "reason"], "reason-needed"));
   if (issues.length > 0) throw unprocessable(issues);
-  await execute(
+  const added = await rows<{ id: string }>(
     `INSERT INTO task_levels (organization_id, task_id, number, effective_from, metric, level_db, lc_minus_la_db, octave_bands_db,
-       las_max_db, peak_db, peak_weighting, samples_db, instrument_class, grade, source_note, reason, author_id)
-     VALUES ($1, $2, $3, $4, $5::jsonb, $6, $7, $8::float8[], $9, $10, $11, $12::float8[], $13, $14, $15, $16, $17)`,
+       las_max_db, peak_db, peak_weighting, samples_db, instrument_class, grade, source_note, reason, author_id, survey_id, strategy, kept_reasons, recording_id)
+     VALUES ($1, $2, $3, $4, $5::jsonb, $6, $7, $8::float8[], $9, $10, $11, $12::float8[], $13, $14, $15, $16, $17, $18, $19, $20::text[], $21) RETURNING id`,
     [
       actor.organizationId,
       task.id,
@@ -62,7 +84,19 @@ export async function insertTaskLevel(
       input.sourceNote,
       input.reason,
       actor.userId,
+      survey?.surveyId ?? null,
+      survey?.strategy ?? "task",
+      [...(survey?.keptReasons ?? []), ...(recording?.keptReasons ?? [])],
+      recording?.recordingId ?? null,
     ],
   );
+  if (survey)
+    await execute(
+      `INSERT INTO task_level_samples (organization_id, task_level_id, position, run_id, run_revision_id, from_s, to_s, level_db)
+       SELECT $1::uuid, $2::uuid, s.ordinality - 1, (s.value->>'runId')::uuid, (s.value->>'runRevisionId')::uuid,
+         (s.value->>'fromS')::float8, (s.value->>'toS')::float8, (s.value->>'levelDb')::float8
+       FROM jsonb_array_elements($3::jsonb) WITH ORDINALITY s`,
+      [actor.organizationId, only(added).id, JSON.stringify(survey.samples)],
+    );
   return number;
 }

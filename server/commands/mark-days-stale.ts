@@ -5,6 +5,7 @@ export interface Concerned {
   fromDate: string;
   siteId?: string;
   taskId?: string;
+  taskIds?: readonly string[];
   areaId?: string;
   modelId?: string;
   workerId?: string;
@@ -12,7 +13,7 @@ export interface Concerned {
 
 /** SQL: the days `d` whose inputs a change touches; `value` puts a value into the query. */
 export function concernedDays(
-  { fromDate, siteId, taskId, areaId, modelId, workerId }: Concerned,
+  { fromDate, siteId, taskId, taskIds, areaId, modelId, workerId }: Concerned,
   value: (given: string) => string,
 ): string {
   const conditions = [`d.date >= CAST(${value(fromDate)} AS date)`];
@@ -23,6 +24,7 @@ export function concernedDays(
   ) => `EXISTS (SELECT 1 FROM shifts s JOIN shift_tasks t ON t.shift_revision_id = s.current_revision_id
     ${of} AND s.worker_id = d.worker_id AND s.date = d.date AND NOT s.is_void)`;
   if (taskId) conditions.push(usesTask(`WHERE t.task_id = ${value(taskId)}`));
+  if (taskIds) conditions.push(usesTask(`WHERE t.task_id IN (${taskIds.map(value).join(", ")})`));
   if (areaId)
     conditions.push(
       usesTask(`JOIN tasks k ON k.id = t.task_id WHERE k.area_id = ${value(areaId)}`),

@@ -50,15 +50,17 @@ export async function previewChange(
   );
   const total = days[0]?.total ?? 0;
   const changes: ChangePreview["changes"] = [];
+  const tally = new Map<string, ChangePreview["tally"][number]>();
   let changedDays = 0;
+  let cantTellDays = 0;
   await execute("SAVEPOINT preview");
   await change();
   for (let from = 0; from < days.length; from += BATCH) {
     const batch = days.slice(from, from + BATCH);
-    const after = await evaluateAsTheyStand(batch);
+    const then = await evaluateAsTheyStand(batch);
     for (const day of batch) {
       const { workerId, workerName, date } = day;
-      const now = after.get(`${workerId} ${date}`);
+      const now = then.get(`${workerId} ${date}`);
       // No shift, or imported: nothing here is computed from what changes.
       if (!now) continue;
       const compared: [Line, string | null, string | null][] = [
@@ -66,10 +68,15 @@ export async function previewChange(
         ["at-the-ear", day.verdictAtEar, now.verdictAtEar],
         ["protector", day.word, now.word],
       ];
-      const changed = compared.filter(([, before, then]) => before !== then);
+      const changed = compared.filter(([, before, next]) => before !== next);
       if (changed.length === 0) continue;
       changedDays += 1;
-      for (const [line, before, then] of changed) {
+      if (changed.some(([, , next]) => next === "cant-tell-yet")) cantTellDays += 1;
+      for (const [line, before, next] of changed) {
+        const after = next ?? NONE;
+        const counted = tally.get(`${line} ${after}`);
+        if (counted) counted.days += 1;
+        else tally.set(`${line} ${after}`, { line, after, days: 1 });
         if (changes.length < MOST_CHANGES)
           changes.push({
             workerId,
@@ -77,7 +84,7 @@ export async function previewChange(
             date,
             line,
             before: before ?? NONE,
-            after: then ?? NONE,
+            after,
           });
       }
     }
@@ -86,8 +93,10 @@ export async function previewChange(
   return {
     days: total,
     workers: new Set(days.map(({ workerId }) => workerId)).size,
+    tally: [...tally.values()].sort((a, b) => b.days - a.days),
     changes,
     changedDays,
+    cantTellDays,
     tooMany: total - days.length,
   };
 }

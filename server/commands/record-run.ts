@@ -1,46 +1,84 @@
 import { randomUUID } from "node:crypto";
-import type { RunCorrection, RunInput } from "../../shared/schemas/run";
+import type { RunCorrection, RunInput, StoredReading } from "../../shared/schemas/run";
+import { findRunDoubts, type RunDoubt } from "../../shared/schemas/run-doubts";
 import { recordAudit } from "../lib/audit";
-import { execute } from "../lib/db";
+import { execute, rows } from "../lib/db";
+import { issue, unprocessable } from "../lib/errors";
+import { only } from "../lib/only";
 import type { Actor } from "../lib/policy";
+import { isoInstant } from "../lib/sql-instant";
 import type { Run } from "../models/instrument";
+import { calibrationOn } from "../queries/calibrations";
+import { leastRunMin } from "../queries/outings";
 
-type RunFacts = Omit<RunInput, "instrumentId" | "workerId" | "date" | "shiftId">;
+type GivenReading = RunInput["readings"][number] &
+  Partial<Pick<StoredReading, "octaveBandsDb" | "source">>;
 
-async function insertRevision(
-  actor: Actor,
+/** What one revision of a run states. */
+export interface RunRevisionFacts {
+  /** Null while it is out. */
+  durationMin: number | null;
+  checkBeforeDb: number | null;
+  checkAfterDb: number | null;
+  covers: RunInput["covers"];
+  keptReason: string | null;
+  unusual: string | null;
+  doubts: readonly string[];
+  readings: readonly GivenReading[];
+  /** ISO instants, where the run names them. */
+  outAt?: string | null;
+  backAt?: string | null;
+}
+
+interface RevisionKind {
+  reason: string | null;
+  isVoid?: boolean;
+  isReturn?: boolean;
+  entryId?: string | null;
+}
+
+/** Adds a revision with its readings and gives its id; that the head points at it is the caller's to do. */
+export async function insertRunRevision(
+  actor: Pick<Actor, "organizationId" | "userId">,
   runId: string,
   number: number,
-  facts: RunFacts,
-  more: { reason: string | null; isVoid: boolean; entryId: string | null },
+  facts: RunRevisionFacts,
+  { reason, isVoid = false, isReturn = false, entryId = null }: RevisionKind,
 ): Promise<string> {
   const id = randomUUID();
   await execute(
-    `INSERT INTO run_revisions (id, organization_id, run_id, number, duration_min, check_before_db, check_after_db, covers, kept_reason, unusual, is_void, reason, entry_id, author_id)
-     VALUES ($1, $2, $3, $4, $5, $6, $7, $8, $9, $10, $11, $12, $13, $14)`,
+    `INSERT INTO run_revisions (id, organization_id, run_id, number, out_at, back_at, duration_min, check_before_db, check_after_db, covers, kept_reason, unusual,
+       doubts, is_void, is_return, reason, entry_id, author_id)
+     VALUES ($1, $2, $3, $4, $5, $6, $7, $8, $9, $10, $11, $12, $13::text[], $14, $15, $16, $17, $18)`,
     [
       id,
       actor.organizationId,
       runId,
       number,
+      facts.outAt ?? null,
+      facts.backAt ?? null,
       facts.durationMin,
       facts.checkBeforeDb,
       facts.checkAfterDb,
       facts.covers,
       facts.keptReason,
       facts.unusual,
-      more.isVoid,
-      more.reason,
-      more.entryId,
+      facts.doubts,
+      isVoid,
+      isReturn,
+      reason,
+      entryId,
       actor.userId,
     ],
   );
   await execute(
     `INSERT INTO readings (organization_id, run_id, run_revision_id, position, criterion_level_db, exchange_rate_db, threshold_db, weighting, response,
-       dose_pct, average_db, lceq_db, las_max_db, peak_db, peak_weighting)
+       dose_pct, average_db, lceq_db, las_max_db, peak_db, peak_weighting, octave_bands_db, source)
      SELECT $1, $2, $3, x.position, (x.settings->>'criterionLevelDb')::float8, (x.settings->>'exchangeRateDb')::float8, (x.settings->>'thresholdDb')::float8,
-       x.settings->>'weighting', x.settings->>'response', x."dosePct", x."averageDb", x."lceqDb", x."lasMaxDb", (x.peak->>'levelDb')::float8, x.peak->>'weighting'
-     FROM jsonb_to_recordset($4::jsonb) AS x(position int, settings jsonb, "dosePct" float8, "averageDb" float8, "lceqDb" float8, "lasMaxDb" float8, peak jsonb)`,
+       x.settings->>'weighting', x.settings->>'response', x."dosePct", x."averageDb", x."lceqDb", x."lasMaxDb", (x.peak->>'levelDb')::float8, x.peak->>'weighting',
+       x."octaveBandsDb", x.source
+     FROM jsonb_to_recordset($4::jsonb) AS x(position int, settings jsonb, "dosePct" float8, "averageDb" float8, "lceqDb" float8, "lasMaxDb" float8, peak jsonb,
+       "octaveBandsDb" float8[], source text)`,
     [
       actor.organizationId,
       runId,
@@ -50,6 +88,8 @@ async function insertRevision(
           ...reading,
           position,
           peak: reading.peak ?? {},
+          octaveBandsDb: reading.octaveBandsDb ?? null,
+          source: reading.source ?? "instrument",
         })),
       ),
     ],
@@ -57,34 +97,115 @@ async function insertRevision(
   return id;
 }
 
+/** What speaks against a run, by its instrument's calibrations on its date and its own facts. */
+export async function doubtsOf(
+  { instrumentId, date }: { instrumentId: string; date: string },
+  facts: Pick<RunRevisionFacts, "checkBeforeDb" | "checkAfterDb" | "durationMin">,
+  more: {
+    leastMin?: number | null;
+    shown?: readonly ("clipped" | "under-range")[];
+  } = {},
+): Promise<RunDoubt[]> {
+  const { checkBeforeDb, checkAfterDb, durationMin } = facts;
+  const { leastMin = null, shown = [] } = more;
+  const calibration = await calibrationOn(instrumentId, date);
+  return findRunDoubts({
+    checkBeforeDb,
+    checkAfterDb,
+    date,
+    calibration,
+    durationMin,
+    leastMin,
+    shown,
+  });
+}
+
 /**
- * A new run with its readings. Head and revision name each other: both foreign keys are checked at the end of the
- * transaction. The day's recomputation is the caller's.
+ * With a doubt a run counts only if somebody says why it is kept.
+ *
+ * @throws AppError invalid, which names every doubt.
  */
+export function requireKeptReason(doubts: readonly RunDoubt[], keptReason: string | null): void {
+  if (keptReason !== null || doubts.length === 0) return;
+  throw unprocessable(doubts.map(({ code, params }) => issue(["keptReason"], code, { ...params })));
+}
+
+/** Where a run is known by its two instants, its instrument is nowhere else between them. */
+export interface RunPlace {
+  siteId: string;
+  instrumentId: string;
+  workerId: string | null;
+  areaId?: string | null;
+  shiftId?: string | null;
+  surveyId?: string | null;
+  taskId?: string | null;
+  place?: string | null;
+  date: string;
+  isOut?: boolean;
+  /** ISO instants; the end is null while it is out. */
+  span?: { from: string; to: string | null } | null;
+}
+
+/** Asks at once whether the instrument was anywhere else, and not when everything else is done: a commit can't be refused well. */
+export const requireFreeInstrument = () => execute("SET CONSTRAINTS runs_overlap IMMEDIATE");
+
+/** Head and first revision, which name each other: both foreign keys are checked at the end of the transaction. */
+export async function insertRun(
+  actor: Pick<Actor, "organizationId" | "userId">,
+  head: RunPlace,
+  facts: RunRevisionFacts,
+  entryId: string | null = null,
+): Promise<string> {
+  const runId = randomUUID();
+  const { from, to } = head.span ?? { from: null, to: null };
+  const revisionId = await insertRunRevision(
+    actor,
+    runId,
+    1,
+    { ...facts, outAt: from, backAt: to },
+    { reason: null, entryId },
+  );
+  await execute(
+    `INSERT INTO runs (id, organization_id, site_id, instrument_id, worker_id, area_id, shift_id, survey_id, task_id, place, date, is_out, span, current_revision_id)
+     VALUES ($1, $2, $3, $4, $5, $6, $7, $8, $9, $10, $11, $12,
+       CASE WHEN $13::timestamptz IS NOT NULL THEN tstzrange($13::timestamptz, $14::timestamptz) END, $15)`,
+    [
+      runId,
+      actor.organizationId,
+      head.siteId,
+      head.instrumentId,
+      head.workerId,
+      head.areaId ?? null,
+      head.shiftId ?? null,
+      head.surveyId ?? null,
+      head.taskId ?? null,
+      head.place ?? null,
+      head.date,
+      head.isOut ?? false,
+      from,
+      to,
+      revisionId,
+    ],
+  );
+  if (head.span) await requireFreeInstrument();
+  return runId;
+}
+
+/** A new run with its readings. The day's recomputation is the caller's. */
 export async function recordRun(
   actor: Actor,
   siteId: string,
   input: RunInput,
   entryId: string | null = null,
 ): Promise<string> {
-  const runId = randomUUID();
-  const revisionId = await insertRevision(actor, runId, 1, input, {
-    reason: null,
-    isVoid: false,
+  const { instrumentId, workerId, shiftId, date, ...facts } = input;
+  const doubts = await doubtsOf(input, facts);
+  requireKeptReason(doubts, facts.keptReason);
+  const runId = await insertRun(
+    actor,
+    { siteId, instrumentId, workerId, shiftId, date },
+    { ...facts, doubts: doubts.map(({ code }) => code) },
     entryId,
-  });
-  await execute(
-    "INSERT INTO runs (id, organization_id, site_id, instrument_id, worker_id, shift_id, date, current_revision_id) VALUES ($1, $2, $3, $4, $5, $6, $7, $8)",
-    [
-      runId,
-      actor.organizationId,
-      siteId,
-      input.instrumentId,
-      input.workerId,
-      input.shiftId,
-      input.date,
-      revisionId,
-    ],
   );
   await recordAudit(actor, {
     action: "record-run",
@@ -104,19 +225,77 @@ export async function correctRun(
 ): Promise<void> {
   const { reason, isVoid, ...facts } = input;
   const number = run.revision + 1;
-  const revisionId = await insertRevision(actor, run.id, number, facts, {
-    reason,
-    isVoid,
-    entryId,
+  const before = await readingsOf(run.currentRevisionId);
+  const doubts = await doubtsOf(run, facts, {
+    leastMin: await leastRunMin(run),
+    shown: before.shown,
   });
+  if (!isVoid) requireKeptReason(doubts, facts.keptReason);
+  const revisionId = await insertRunRevision(
+    actor,
+    run.id,
+    number,
+    {
+      ...facts,
+      doubts: doubts.map(({ code }) => code),
+      outAt: before.outAt,
+      backAt: before.backAt,
+      readings: facts.readings.map((reading) => withOrigin(reading, before.readings)),
+    },
+    { reason, isVoid, entryId },
+  );
   await execute(
     "UPDATE runs SET revision = $2, current_revision_id = $3, is_void = $4 WHERE id = $1",
     [run.id, number, revisionId, isVoid],
   );
+  // A history is what its run logged: it counts as long as the run does, and its file can come in again after that.
+  await execute("UPDATE time_histories SET is_void = $2 WHERE run_id = $1 AND is_void <> $2", [
+    run.id,
+    isVoid,
+  ]);
   await recordAudit(actor, {
     action: isVoid ? "void-run" : "correct-run",
     subjectKind: "run",
     subjectId: run.id,
     values: { number, ...input },
   });
+}
+
+interface Before {
+  /** What its instrument showed is no figure that a correction could take back. */
+  shown: ("clipped" | "under-range")[];
+  outAt: string | null;
+  backAt: string | null;
+  readings: StoredReading[];
+}
+
+async function readingsOf(revisionId: string): Promise<Before> {
+  return only(
+    await rows<Before>(
+      `SELECT ARRAY(SELECT d FROM unnest(v.doubts) d WHERE d IN ('clipped', 'under-range')) AS shown,
+         ${isoInstant("v.out_at")} AS "outAt", ${isoInstant("v.back_at")} AS "backAt",
+         coalesce((SELECT json_agg(json_build_object(
+           'settings', json_build_object('criterionLevelDb', g.criterion_level_db, 'exchangeRateDb', g.exchange_rate_db, 'thresholdDb', g.threshold_db,
+             'weighting', g.weighting, 'response', g.response),
+           'dosePct', g.dose_pct, 'averageDb', g.average_db, 'octaveBandsDb', g.octave_bands_db, 'source', g.source))
+           FROM readings g WHERE g.run_revision_id = v.id), '[]') AS readings
+       FROM run_revisions v WHERE v.id = :revisionId`,
+      { revisionId },
+    ),
+  );
+}
+
+/** A correction that leaves a reading's figures alone leaves its spectrum and where it came from, too. */
+function withOrigin(reading: GivenReading, before: readonly StoredReading[]): GivenReading {
+  const earlier = before.find(
+    ({ settings, averageDb, dosePct }) =>
+      (Object.keys(settings) as (keyof typeof settings)[]).every(
+        (name) => settings[name] === reading.settings[name],
+      ) &&
+      averageDb === reading.averageDb &&
+      dosePct === reading.dosePct,
+  );
+  return earlier
+    ? { ...reading, octaveBandsDb: earlier.octaveBandsDb, source: earlier.source }
+    : reading;
 }

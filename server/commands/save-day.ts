@@ -1,5 +1,6 @@
 import { randomUUID } from "node:crypto";
 import type { ProblemIssue } from "../../shared/schemas/problem";
+import { isEmptyReading } from "../../shared/schemas/run";
 import {
   checkShiftFacts,
   DayRowInput,
@@ -15,6 +16,7 @@ import { groupBy } from "../lib/group-by";
 import type { Actor } from "../lib/policy";
 import { Run } from "../models/instrument";
 import type { Crew } from "../models/worker";
+import { calibrationsOn } from "../queries/calibrations";
 import { dayFiguresOf } from "../queries/day-figures";
 import { entryNotices } from "../queries/entry-notices";
 import {
@@ -129,7 +131,7 @@ export async function saveDay(
     worked.flatMap(({ row: { tasks } }) => tasks.map(({ taskId }) => taskId)),
   );
   const instruments = await knownInstruments(
-    worked.flatMap(({ row: { reading } }) => (reading ? [reading.instrumentId] : [])),
+    worked.flatMap(({ row: { run } }) => (run ? [run.instrumentId] : [])),
   );
   const nearby =
     workerIds.length === 0
@@ -138,6 +140,7 @@ export async function saveDay(
           "s.worker_id = ANY (CAST(:workerIds AS uuid[])) AND s.date BETWEEN CAST(:from AS date) AND CAST(:to AS date)",
           { workerIds: `{${workerIds.join(",")}}`, from: addDays(date, -2), to: addDays(date, 2) },
         );
+  const doubtful = await doubtfulRuns(date, worked);
   const shiftsByWorker = groupBy(nearby, ({ workerId }) => workerId);
   const shiftsOf = (workerId: string) => shiftsByWorker.get(workerId) ?? [];
 
@@ -160,8 +163,12 @@ export async function saveDay(
       ...wholeDayIssues(one.lengthMin, one.confirmsWholeDay),
       ...unknownTaskIssues(one.tasks, taskIds),
     );
-    if (one.reading && !instruments.has(one.reading.instrumentId))
-      issues.push(issue(["reading", "instrumentId"], "instrument-unknown"));
+    if (one.run && !instruments.has(one.run.instrumentId))
+      issues.push(issue(["run", "instrumentId"], "instrument-unknown"));
+    if (one.run && doubtful.has(index)) issues.push(issue(["run", "instrumentId"], "run-doubtful"));
+    one.run?.readings.forEach((reading, at) => {
+      if (isEmptyReading(reading)) issues.push(issue(["run", "readings", at], "reading-empty"));
+    });
 
     const own =
       shiftsOf(one.workerId).find((shift) =>
@@ -222,8 +229,8 @@ export async function saveDay(
   );
   const idOf = new Map(toStore.map(({ index }, place) => [index, ids[place] as string]));
   for (const { index, row: one, current } of accepted) {
-    if (one.reading)
-      await storeReading(
+    if (one.run)
+      await storeRun(
         actor,
         crew.siteId,
         date,
@@ -235,7 +242,7 @@ export async function saveDay(
   const absent = await storeAbsences(actor, crew, date, absences, members, nearby, refused);
 
   const keys = accepted
-    .filter(({ shift, row: { reading } }) => shift !== null || reading !== null)
+    .filter(({ shift, row: { run } }) => shift !== null || run !== null)
     .map(({ row: { workerId } }) => ({ workerId, date }));
   const recomputed = await recomputeDays(actor.organizationId, keys);
   await scheduleNotices({
@@ -330,7 +337,34 @@ async function knownInstruments(ids: readonly string[]): Promise<Set<string>> {
   return new Set(found.map(({ id }) => id));
 }
 
-async function storeReading(
+/** Rows whose instrument had no certificate on that day, unless somebody has said already why the run is kept. */
+async function doubtfulRuns(
+  date: string,
+  worked: readonly { index: number; row: WorkedRowInput }[],
+): Promise<Set<number>> {
+  const given = worked.flatMap(({ index, row: { run } }) => (run ? [{ index, run }] : []));
+  const states = await calibrationsOn(
+    given.map(({ run: { instrumentId } }) => ({ instrumentId, date })),
+  );
+  const without = given.filter((_, place) => {
+    const { dueOn, failedOn } = states[place]!;
+    return failedOn !== null || (dueOn !== null && dueOn < date);
+  });
+  if (without.length === 0) return new Set();
+  const kept = await rows<{ id: string }>(
+    `SELECT r.id FROM runs r JOIN run_revisions v ON v.id = r.current_revision_id
+     WHERE r.id = ANY (CAST(:ids AS uuid[])) AND v.kept_reason IS NOT NULL`,
+    { ids: `{${without.flatMap(({ run }) => run.runId ?? []).join(",")}}` },
+  );
+  const isKept = new Set(kept.map(({ id }) => id));
+  return new Set(
+    without
+      .filter(({ run }) => run.runId === null || !isKept.has(run.runId))
+      .map(({ index }) => index),
+  );
+}
+
+async function storeRun(
   actor: Actor,
   siteId: string,
   date: string,
@@ -338,8 +372,8 @@ async function storeReading(
   shiftId: string | null,
   entryId: string,
 ): Promise<void> {
-  if (!one.reading) return;
-  const { instrumentId, runId, runRevision, durationMin, covers, ...facts } = one.reading;
+  if (!one.run) return;
+  const { instrumentId, runId, runRevision, durationMin, covers, readings } = one.run;
   const run = {
     durationMin,
     covers,
@@ -347,7 +381,7 @@ async function storeReading(
     checkAfterDb: null,
     keptReason: null,
     unusual: null,
-    readings: [facts],
+    readings,
   };
   if (runId === null) {
     await recordRun(

@@ -1,7 +1,7 @@
 import { randomUUID } from "node:crypto";
 import type { DayInput, ProtectorData, RuleSetVersion } from "../../shared/acoustics/types";
 import type { Cause } from "../../shared/findings/causes";
-import { proposeRemedy, type Remedy } from "../../shared/findings/remedy";
+import { type Proposal, proposeRemedy } from "../../shared/findings/remedy";
 import type { FindingKind, FindingState } from "../../shared/schemas/finding";
 import { recordAudit, recordAuditMany } from "../lib/audit";
 import { execute, rows } from "../lib/db";
@@ -58,7 +58,8 @@ const causeKey = (
 
 /**
  * Holds the findings to what the days show now. A cause has one open finding, to which further days attach; a closed one
- * comes back only for a day dated after its closing; a day that was corrected away takes its evidence with it.
+ * comes back only for a day dated after its closing; a day that was corrected away takes its evidence with it. One that
+ * only other rules took away is for a person to check.
  */
 export async function updateFindings(
   organizationId: string,
@@ -181,16 +182,16 @@ interface NewFinding {
 /** What would put a day right, found once however many of its findings ask. */
 class Remedies {
   private readonly registers = new Map<string, ProtectorData[]>();
-  private readonly found = new Map<DayCauses, Remedy | null>();
+  private readonly found = new Map<DayCauses, Proposal | null>();
 
-  async of(day: DayCauses, input: DayInput, governing: RuleSetVersion): Promise<Remedy | null> {
+  async of(day: DayCauses, input: DayInput, governing: RuleSetVersion): Promise<Proposal | null> {
     const known = this.found.get(day);
     if (known !== undefined) return known;
     const models = this.registers.get(day.date) ?? (await registerOn(day.date));
     this.registers.set(day.date, models);
-    const remedy = proposeRemedy(input, governing, models);
-    this.found.set(day, remedy);
-    return remedy;
+    const proposal = proposeRemedy(input, governing, models);
+    this.found.set(day, proposal);
+    return proposal;
   }
 }
 
@@ -200,7 +201,7 @@ async function factsOf(
   remedies: Remedies,
 ): Promise<Record<string, unknown>> {
   if (!mendable.has(cause.kind) || !day.input || !day.governing) return { ...cause.facts };
-  return { ...cause.facts, remedy: await remedies.of(day, day.input, day.governing) };
+  return { ...cause.facts, ...(await remedies.of(day, day.input, day.governing)) };
 }
 
 async function insertFindings(organizationId: string, fresh: readonly NewFinding[]): Promise<void> {
@@ -315,20 +316,24 @@ interface Attached {
   criterion: string;
   useKey: string;
   state: FindingState;
+  /** The rules by which the day showed it. */
+  ruleSetKey: string;
+  ruleSetVersion: number;
 }
 
 async function withdrawEvidence(organizationId: string, days: readonly DayCauses[]): Promise<void> {
   const attached = await rows<Attached>(
-    `SELECT e.finding_id AS "findingId", e.worker_id AS "workerId", e.date::text AS date, f.kind, f.criterion, f.use_key AS "useKey", f.state
-     FROM finding_evidence e JOIN findings f ON f.id = e.finding_id
+    `SELECT e.finding_id AS "findingId", e.worker_id AS "workerId", e.date::text AS date, f.kind, f.criterion, f.use_key AS "useKey", f.state,
+       r.governing_rule_set AS "ruleSetKey", r.governing_version AS "ruleSetVersion"
+     FROM finding_evidence e JOIN findings f ON f.id = e.finding_id JOIN day_results r ON r.id = e.result_id
      JOIN jsonb_to_recordset($1::jsonb) AS x("workerId" uuid, date date) ON x."workerId" = e.worker_id AND x.date = e.date
      WHERE f.state <> 'closed' AND f.kind <> 'problem-reported'`,
     [JSON.stringify(days.map(({ workerId, date }) => ({ workerId, date })))],
   );
-  const causesOf = new Map(days.map((day) => [`${day.workerId} ${day.date}`, day.causes]));
+  const dayOf = new Map(days.map((day) => [`${day.workerId} ${day.date}`, day]));
   const gone = attached.filter(
     ({ workerId, date, kind, criterion, useKey }) =>
-      !(causesOf.get(`${workerId} ${date}`) ?? []).some(
+      !(dayOf.get(`${workerId} ${date}`)?.causes ?? []).some(
         (cause) => cause.kind === kind && cause.criterion === criterion && cause.useKey === useKey,
       ),
   );
@@ -345,9 +350,15 @@ async function withdrawEvidence(organizationId: string, days: readonly DayCauses
   );
   const hasEvidence = new Set(left.map(({ findingId }) => findingId));
   await recountFindings([...hasEvidence]);
-  for (const { findingId, date, state } of touched.filter(
-    (one) => !hasEvidence.has(one.findingId),
-  )) {
+  for (const one of touched.filter(({ findingId }) => !hasEvidence.has(findingId))) {
+    const { findingId, date, state } = one;
+    const governing = dayOf.get(`${one.workerId} ${date}`)?.governing;
+    const isRejudged =
+      governing && (governing.key !== one.ruleSetKey || governing.version !== one.ruleSetVersion);
+    if (isRejudged) {
+      await leaveToCheck(organizationId, one, governing);
+      continue;
+    }
     // Nobody has taken it up and nothing of it is left: a typing error that was caught.
     const closes = state === "new" || state === "came-back";
     await execute(
@@ -372,4 +383,32 @@ async function withdrawEvidence(organizationId: string, days: readonly DayCauses
       },
     );
   }
+}
+
+/**
+ * The day stands as it was, and other rules judge it now. Nobody has found it to be wrong, so that it is not closed: a
+ * person looks whether what the earlier rules asked for is still wanted.
+ */
+async function leaveToCheck(
+  organizationId: string,
+  { findingId, date, state, ruleSetKey }: Attached,
+  governing: RuleSetVersion,
+): Promise<void> {
+  await execute(
+    "INSERT INTO finding_steps (organization_id, finding_id, kind, from_state, to_state, text) VALUES ($1, $2, 'rules-changed', $3, 'done', $4)",
+    [organizationId, findingId, state, governing.key],
+  );
+  await execute(
+    "UPDATE findings SET state = 'done', days_count = 0, revision = revision + 1 WHERE id = $1",
+    [findingId],
+  );
+  await recordAudit(
+    { organizationId },
+    {
+      action: "rejudge-finding",
+      subjectKind: "finding",
+      subjectId: findingId,
+      values: { date, from: state, to: "done", ruleSets: [ruleSetKey, governing.key] },
+    },
+  );
 }

@@ -1,4 +1,5 @@
 import type { I18n } from "@lingui/core";
+import { type ProposedRemedy, remedyWords } from "../../shared/findings/facts";
 import { findingWord } from "../../shared/findings/words";
 import { formatDay } from "../../shared/format/date";
 import { formatLevelWithUnit, formatWholeLevel } from "../../shared/format/level";
@@ -19,7 +20,8 @@ export interface NoticeFacts {
     kinds: readonly FindingKind[];
     atEarDb: number | null;
     outsideDb: number | null;
-    remedyNames: readonly string[];
+    /** What to give out, where the finding proposes something. */
+    remedy: ProposedRemedy | null;
     isStillOver: boolean;
   }[];
   link: string;
@@ -69,7 +71,7 @@ function subjectOf(i18n: I18n, locale: Locale, { audience, items }: NoticeFacts)
 }
 
 function workerLines(i18n: I18n, locale: Locale, { items }: NoticeFacts): string[] {
-  return items.flatMap(({ date, kinds, atEarDb, remedyNames, isStillOver }) => {
+  return items.flatMap(({ date, kinds, atEarDb, remedy, isStillOver }) => {
     const day = formatDay(date, locale);
     const level = formatWholeLevel(atEarDb, locale);
     const said = !isStillOver
@@ -86,9 +88,9 @@ function workerLines(i18n: I18n, locale: Locale, { items }: NoticeFacts): string
           : i18n.t("On {day} the noise around you was more than is allowed.", { day });
     const todo = !isStillOver
       ? i18n.t("You need not do anything.")
-      : remedyNames.length > 0
+      : remedy
         ? i18n.t("Please ask your supervisor for {protector} before you work in noise again.", {
-            protector: remedyNames.join(" + "),
+            protector: remedyWords(i18n, remedy),
           })
         : i18n.t("Please talk to your supervisor before you work in noise again.");
     return [said, todo];
@@ -97,7 +99,7 @@ function workerLines(i18n: I18n, locale: Locale, { items }: NoticeFacts): string
 
 function crewLines(i18n: I18n, locale: Locale, { items }: NoticeFacts): string[] {
   return items.map(
-    ({ workerName, employeeNumber, date, kinds, atEarDb, outsideDb, remedyNames, isStillOver }) => {
+    ({ workerName, employeeNumber, date, kinds, atEarDb, outsideDb, remedy, isStillOver }) => {
       const head = i18n.t("{name}, {number}, on {day}:", {
         name: workerName,
         number: employeeNumber,
@@ -111,8 +113,8 @@ function crewLines(i18n: I18n, locale: Locale, { items }: NoticeFacts): string[]
         outside: formatLevelWithUnit(outsideDb, locale),
       });
       const todo =
-        isStillOver && remedyNames.length > 0
-          ? i18n.t("Give {protector}.", { protector: remedyNames.join(" + ") })
+        isStillOver && remedy
+          ? i18n.t("Give {protector}.", { protector: remedyWords(i18n, remedy) })
           : "";
       return [`${head} ${what}`, figures, todo].filter(Boolean).join("\n");
     },

@@ -7,6 +7,7 @@ export interface YearColumn {
   /** Free text passes the formula guard; codes and numbers leave as they are stored. */
   type: "text" | "code" | "number" | "integer" | "date" | "time" | "boolean" | "id";
   unit: string;
+  /** As the catalogue knows it. */
   meaning: string;
 }
 
@@ -25,71 +26,80 @@ export const YEAR_COLUMNS: readonly YearColumn[] = [
     sql: "r.id",
     type: "id",
     unit: "",
-    meaning: "The result this record states; it opens to its working",
+    meaning:
+      /* i18n */ "The result this record states; it opens to its working. The last record says «rows» here and the number of days in the next field: a file without it is not whole",
   },
-  { name: "site", sql: "s.name", type: "text", unit: "", meaning: "Site that the day belongs to" },
+  {
+    name: "site",
+    sql: "s.name",
+    type: "text",
+    unit: "",
+    meaning: /* i18n */ "Site that the day belongs to",
+  },
   {
     name: "worker",
     sql: "w.employee_number",
     type: "text",
     unit: "",
-    meaning: "Employee number, or the worker's name where the file was asked for by name",
+    meaning:
+      /* i18n */ "Employee number, or the worker's name where the file was asked for by name",
   },
   {
     name: "crew",
     sql: "c.name",
     type: "text",
     unit: "",
-    meaning: "Crew with which the day was worked; empty: none",
+    meaning: /* i18n */ "Crew with which the day was worked; empty: none",
   },
   {
     name: "date",
     sql: "d.date",
     type: "date",
     unit: "",
-    meaning: "Local date on which the day's shifts start",
+    meaning: /* i18n */ "Local date on which the day's shifts start",
   },
   {
     name: "shift_min",
     sql: "r.shift_min",
     type: "number",
     unit: "min",
-    meaning: "Length of all shifts of the day",
+    meaning: /* i18n */ "Length of all shifts of the day",
   },
   {
     name: "unaccounted_min",
     sql: "r.unaccounted_min",
     type: "number",
     unit: "min",
-    meaning: "Part of the day for which no task is recorded",
+    meaning: /* i18n */ "Part of the day for which no task is recorded",
   },
   {
     name: "rule_set",
     sql: "r.governing_rule_set",
     type: "code",
     unit: "",
-    meaning: "Governing rule set by which the day was judged",
+    meaning: /* i18n */ "Governing rule set by which the day was judged",
   },
   {
     name: "rule_set_version",
     sql: "r.governing_version",
     type: "integer",
     unit: "",
-    meaning: "Version of the rule set",
+    meaning: /* i18n */ "Version of the rule set",
   },
   {
     name: "method_version",
     sql: "r.method_version",
     type: "integer",
     unit: "",
-    meaning: "Version of the arithmetic; 0: imported, not computed here",
+    meaning: /* i18n */ "Version of the arithmetic; 0: imported, not computed here",
   },
   {
     name: "origin",
     sql: "r.origin",
     type: "code",
     unit: "",
-    meaning: "computed: from recorded shifts; imported: levels only, working not available",
+    meaning:
+      /* i18n */ "computed: from recorded shifts; imported: levels only, working not available",
   },
   {
     name: "lex_8h_db",
@@ -97,14 +107,15 @@ export const YEAR_COLUMNS: readonly YearColumn[] = [
     type: "number",
     unit: "dB",
     meaning:
-      "Daily exposure level LEX,8h without protection, ISO 9612; empty where the rule set judges a dose",
+      /* i18n */ "Daily exposure level LEX,8h without protection, ISO 9612; empty where the rule set judges a dose",
   },
   {
     name: "twa_db",
     sql: `CASE WHEN NOT ${isEnergy} THEN r.outside_db END`,
     type: "number",
     unit: "dB",
-    meaning: "Time-weighted average without protection, where the rule set judges a dose",
+    meaning:
+      /* i18n */ "Time-weighted average without protection, where the rule set judges a dose",
   },
   {
     name: "level_bound",
@@ -112,7 +123,7 @@ export const YEAR_COLUMNS: readonly YearColumn[] = [
     type: "code",
     unit: "",
     meaning:
-      "exact, or whether the level without protection is only an upper or a lower bound of the true one",
+      /* i18n */ "exact, or whether the level without protection is only an upper or a lower bound of the true one",
   },
   {
     name: "dose_pct",
@@ -120,42 +131,44 @@ export const YEAR_COLUMNS: readonly YearColumn[] = [
     type: "number",
     unit: "%",
     meaning:
-      "Dose without protection; 100 is the whole allowance; empty where the rule set has none",
+      /* i18n */ "Dose without protection; 100 is the whole allowance; empty where the rule set has none",
   },
   {
     name: "expanded_u_db",
     sql: "r.uncertainty_db",
     type: "number",
     unit: "dB",
-    meaning: "Expanded uncertainty of LEX,8h, one-sided 95 %; belongs to no dose and no TWA",
+    meaning:
+      /* i18n */ "Expanded uncertainty of LEX,8h, one-sided 95 %; belongs to no dose and no TWA",
   },
   {
     name: "at_ear_off_db",
     sql: "r.at_ear_db",
     type: "number",
     unit: "dB",
-    meaning: "The day at the ear, wearing time counted, active part off",
+    meaning: /* i18n */ "The day at the ear, wearing time counted, active part off",
   },
   {
     name: "at_ear_on_db",
     sql: "r.at_ear_active_db",
     type: "number",
     unit: "dB",
-    meaning: "The day at the ear with the active part on; empty without one",
+    meaning: /* i18n */ "The day at the ear with the active part on; empty without one",
   },
   {
     name: "at_ear_as_worked_db",
     sql: "r.at_ear_as_worked_db",
     type: "number",
     unit: "dB",
-    meaning: "The day at the ear, active part on while the battery lasts",
+    meaning: /* i18n */ "The day at the ear, active part on while the battery lasts",
   },
   {
     name: "while_worn_db",
     sql: "r.while_worn_db",
     type: "number",
     unit: "dB",
-    meaning: "Level at the ear while the protector is worn, in the task that decides its word",
+    meaning:
+      /* i18n */ "Level at the ear while the protector is worn, in the task that decides its word",
   },
   {
     name: "verdict_without_protection",
@@ -163,14 +176,14 @@ export const YEAR_COLUMNS: readonly YearColumn[] = [
     type: "code",
     unit: "",
     meaning:
-      "under, over, cant-tell-yet or not-assessed, against the criteria judged without protection",
+      /* i18n */ "under, over, cant-tell-yet or not-assessed, against the criteria judged without protection",
   },
   {
     name: "verdict_at_ear",
     sql: "r.verdict_at_ear",
     type: "code",
     unit: "",
-    meaning: "The same at the ear; not-assessed where the rule set judges nothing there",
+    meaning: /* i18n */ "The same at the ear; not-assessed where the rule set judges nothing there",
   },
   {
     name: "criteria",
@@ -178,14 +191,14 @@ export const YEAR_COLUMNS: readonly YearColumn[] = [
     type: "code",
     unit: "",
     meaning:
-      "Verdict on every criterion of the governing rule set, peak and ceiling included, as criterion=verdict",
+      /* i18n */ "Verdict on every criterion of the governing rule set, peak and ceiling included, as criterion=verdict",
   },
   {
     name: "protector",
     sql: "r.has_protector",
     type: "code",
     unit: "",
-    meaning: "Whether a protector counted as worn in some task: yes, no or unknown",
+    meaning: /* i18n */ "Whether a protector counted as worn in some task: yes, no or unknown",
   },
   {
     name: "protector_word",
@@ -193,21 +206,21 @@ export const YEAR_COLUMNS: readonly YearColumn[] = [
     type: "code",
     unit: "",
     meaning:
-      "too-little, just-enough, good, strong-side, too-much, or enough where the rule has no scale",
+      /* i18n */ "too-little, just-enough, good, strong-side, too-much, or enough where the rule has no scale",
   },
   {
     name: "deciding_task",
     sql: "k.name",
     type: "text",
     unit: "",
-    meaning: "Task that decides the protector's word",
+    meaning: /* i18n */ "Task that decides the protector's word",
   },
   {
     name: "reason",
     sql: "r.reason",
     type: "code",
     unit: "",
-    meaning: "What stands between the day and a plain verdict",
+    meaning: /* i18n */ "What stands between the day and a plain verdict",
   },
   {
     name: "grade",
@@ -215,7 +228,7 @@ export const YEAR_COLUMNS: readonly YearColumn[] = [
     type: "code",
     unit: "",
     meaning:
-      "How well the levels are known: measured-worker, measured-group, task-level or estimate",
+      /* i18n */ "How well the levels are known: measured-worker, measured-group, task-level or estimate",
   },
   {
     name: "is_projected",
@@ -223,42 +236,42 @@ export const YEAR_COLUMNS: readonly YearColumn[] = [
     type: "boolean",
     unit: "",
     meaning:
-      "A shorter reading was projected to the day because the officer said that the rest was like it",
+      /* i18n */ "A shorter reading was projected to the day because the officer said that the rest was like it",
   },
   {
     name: "is_kept",
     sql: "r.is_kept::text",
     type: "boolean",
     unit: "",
-    meaning: "It rests on a run kept with a reason in spite of its field checks",
+    meaning: /* i18n */ "It rests on a run kept with a reason in spite of its field checks",
   },
   {
     name: "is_corrected",
     sql: "EXISTS (SELECT 1 FROM shifts f WHERE f.worker_id = d.worker_id AND f.date = d.date AND f.revision > 1)::text",
     type: "boolean",
     unit: "",
-    meaning: "A shift of the day was corrected after it was first recorded",
+    meaning: /* i18n */ "A shift of the day was corrected after it was first recorded",
   },
   {
     name: "is_out_of_date",
     sql: "d.is_stale::text",
     type: "boolean",
     unit: "",
-    meaning: "Its inputs have changed since and it is about to be computed again",
+    meaning: /* i18n */ "Its inputs have changed since and it is about to be computed again",
   },
   {
     name: "computed_at",
     sql: `to_char(r.computed_at AT TIME ZONE 'UTC', 'YYYY-MM-DD"T"HH24:MI:SS.US"Z"')`,
     type: "time",
     unit: "",
-    meaning: "When the result was stored, UTC",
+    meaning: /* i18n */ "When the result was stored, UTC",
   },
   {
     name: "inputs_sha256",
     sql: "encode(r.inputs_hash, 'hex')",
     type: "id",
     unit: "",
-    meaning: "Digest of the input revisions and versions that the result rests on",
+    meaning: /* i18n */ "Digest of the input revisions and versions that the result rests on",
   },
 ];
 

@@ -1,5 +1,6 @@
 import type { ProblemIssue } from "../../shared/schemas/problem";
 import { type RunInput, RunInput as RunSchema } from "../../shared/schemas/run";
+import { findRunDoubts } from "../../shared/schemas/run-doubts";
 import { employmentIssues, futureIssues, lockWorkers } from "../commands/check-shift";
 import { recordRun } from "../commands/record-run";
 import { todayAt } from "../lib/calendar";
@@ -7,6 +8,8 @@ import { rows } from "../lib/db";
 import { groupBy } from "../lib/group-by";
 import type { Actor } from "../lib/policy";
 import type { Site } from "../models/site";
+import { calibrationsOn } from "../queries/calibrations";
+import { IS_OF_DAY } from "../queries/day-inputs";
 import { type ImportWorker, workersByNumber } from "../queries/import-lookups";
 import { Cells } from "./cells";
 import { IMPORT_COLUMNS } from "./columns";
@@ -84,7 +87,7 @@ export async function draftReadings(actor: Actor, site: Site, file: CsvFile): Pr
   const recorded = await recordedRuns(workerIds);
   const today = todayAt(site.timeZone);
 
-  const runs: RunInput[] = [];
+  const fresh: { run: RunInput; first: CsvLine }[] = [];
   const days: { workerId: string; date: string }[] = [];
   let unchanged = 0;
   for (const lines of groups) {
@@ -109,11 +112,27 @@ export async function draftReadings(actor: Actor, site: Site, file: CsvFile): Pr
     }
     days.push({ workerId: worker.id, date: facts.date });
     const same = recorded.get(keyOfRun(parsed.data));
-    if (same === undefined) runs.push(parsed.data);
+    if (same === undefined) fresh.push({ run: parsed.data, first });
     else if (same === factsOf(parsed.data)) unchanged += 1;
     // A recorded run is corrected on its own page, with its reason and its readings beside the earlier ones.
     else cells.refuse(first, "instrument_serial", "reading-recorded-already");
   }
+  const states = await calibrationsOn(fresh.map(({ run }) => run));
+  fresh.forEach(({ run, first }, place) => {
+    const { date, keptReason, checkBeforeDb, checkAfterDb } = run;
+    if (keptReason !== null) return;
+    const found = findRunDoubts({
+      checkBeforeDb,
+      checkAfterDb,
+      date,
+      calibration: states[place]!,
+      durationMin: null,
+      leastMin: null,
+      shown: [],
+    });
+    for (const { code, params } of found) cells.refuse(first, "kept_reason", code, { ...params });
+  });
+  const runs = fresh.map(({ run }) => run);
   return {
     fresh: runs.length,
     changed: 0,
@@ -238,7 +257,7 @@ async function recordedRuns(workerIds: string): Promise<Map<string, string>> {
             'thresholdDb', g.threshold_db, 'weighting', g.weighting, 'response', g.response), 'dosePct', g.dose_pct, 'averageDb', g.average_db, 'lceqDb', g.lceq_db,
           'lasMaxDb', g.las_max_db, 'peak', CASE WHEN g.peak_db IS NOT NULL THEN json_build_object('levelDb', g.peak_db, 'weighting', g.peak_weighting) END) ORDER BY g.position)
         FROM readings g WHERE g.run_revision_id = v.id) AS readings
-     FROM runs r JOIN run_revisions v ON v.id = r.current_revision_id WHERE r.worker_id = ANY (CAST(:workerIds AS uuid[])) AND NOT r.is_void`,
+     FROM runs r JOIN run_revisions v ON v.id = r.current_revision_id WHERE r.worker_id = ANY (CAST(:workerIds AS uuid[])) AND ${IS_OF_DAY}`,
     { workerIds },
   );
   return new Map(found.map((run) => [keyOfRun(run), factsOf(run)]));

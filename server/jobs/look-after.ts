@@ -1,6 +1,10 @@
 import { queueRecompute } from "../commands/mark-days-stale";
+import { queueHistoryReading } from "../commands/order-history-reading";
 import { queueNotice } from "../commands/schedule-notices";
+import { queueAnalysis } from "../commands/start-recording";
 import { execute, inTransaction, organizationIds, rows, sequelize } from "../lib/db";
+import { fileStore } from "../lib/file-store";
+import { deleteAudioDue } from "./delete-audio";
 
 /**
  * What has to be looked after every minute, so that nothing depends on one process having lived: notices whose job was
@@ -19,6 +23,16 @@ export async function lookAfter(): Promise<void> {
         "SELECT count(*)::int AS count FROM (SELECT 1 FROM days WHERE is_stale LIMIT 1) d",
       );
       if (stale && stale.count > 0) await queueRecompute(organizationId);
+      // Whoever reads a file says so every second; a minute of silence means that its process is gone.
+      const silent = await rows<{ id: string }>(
+        "SELECT id FROM history_imports WHERE state IN ('reading', 'storing') AND updated_at < now() - interval '1 minute'",
+      );
+      for (const { id } of silent) await queueHistoryReading(organizationId, id);
+      const unanalysed = await rows<{ id: string }>(
+        "SELECT id FROM recordings WHERE state IN ('uploaded', 'analysing') AND updated_at < now() - interval '1 minute'",
+      );
+      for (const { id } of unanalysed) await queueAnalysis(organizationId, id);
+      await deleteAudioDue(organizationId);
       await openCalibrationFindings(organizationId);
       await execute("DELETE FROM idempotency_keys WHERE created_at < now() - interval '30 days'");
     });
@@ -27,12 +41,16 @@ export async function lookAfter(): Promise<void> {
     "DELETE FROM sessions WHERE expire < now(); DELETE FROM rate_limits WHERE resets_at < now()",
     { transaction: null },
   );
+  await fileStore().sweep();
 }
 
 /** Days before its laboratory calibration runs out on which an instrument becomes somebody's business. */
 const CALIBRATION_NOTICE_DAYS = 14;
 
-/** One open finding per instrument whose calibration runs out; a new calibration date closes it. */
+/**
+ * One open finding per instrument whose calibration runs out; a new calibration date closes it. One that failed its
+ * calibration has its own (record-calibration.ts), which a person closes.
+ */
 export async function openCalibrationFindings(organizationId: string): Promise<void> {
   await execute(
     `WITH due AS (
@@ -48,7 +66,7 @@ export async function openCalibrationFindings(organizationId: string): Promise<v
   await execute(
     `WITH mended AS (
        UPDATE findings f SET state = 'closed', closed_on = current_date, closing_reason = 'calibrated', revision = f.revision + 1
-       FROM instruments i WHERE i.id = f.instrument_id AND f.organization_id = $1 AND f.kind = 'instrument' AND f.state <> 'closed'
+       FROM instruments i WHERE i.id = f.instrument_id AND f.organization_id = $1 AND f.kind = 'instrument' AND f.criterion = '' AND f.state <> 'closed'
          AND (i.is_archived OR i.calibration_due_on IS NULL OR i.calibration_due_on > current_date + ${CALIBRATION_NOTICE_DAYS})
        RETURNING f.id, f.organization_id)
      INSERT INTO finding_steps (organization_id, finding_id, kind, to_state, text) SELECT organization_id, id, 'state', 'closed', 'calibrated' FROM mended`,

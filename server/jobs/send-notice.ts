@@ -1,3 +1,4 @@
+import { remedyOf } from "../../shared/findings/facts";
 import { createI18n, isLocale } from "../../shared/i18n";
 import type { FindingKind } from "../../shared/schemas/finding";
 import { type Mail, type NoticeFacts, overLimitMail } from "../emails/over-limit";
@@ -126,13 +127,11 @@ export async function noticeMail(noticeId: string, publicUrl: string): Promise<M
     { noticeId },
   );
   if (!head) throw new Error("the notice is gone");
-  const items = await rows<
-    Omit<NoticeFacts["items"][number], "remedyNames"> & { remedyNames: string[] | null }
-  >(
+  const items = await rows<Omit<NoticeFacts["items"][number], "remedy"> & { proposed: unknown }>(
     `SELECT w.name AS "workerName", w.employee_number AS "employeeNumber", i.date::text AS date, array_agg(DISTINCT f.kind) AS kinds,
        r.at_ear_db AS "atEarDb", r.outside_db AS "outsideDb",
        bool_or(EXISTS (SELECT 1 FROM finding_evidence e WHERE e.finding_id = f.id AND e.worker_id = i.worker_id AND e.date = i.date)) AS "isStillOver",
-       (array_agg(f.facts->'remedy'->'names') FILTER (WHERE f.facts->'remedy'->'names' IS NOT NULL))[1] AS "remedyNames"
+       (array_agg(f.facts->'remedy' ORDER BY f.last_date DESC, f.id) FILTER (WHERE jsonb_typeof(f.facts->'remedy') = 'object'))[1] AS proposed
      FROM notice_items i JOIN findings f ON f.id = i.finding_id JOIN workers w ON w.id = i.worker_id JOIN day_results r ON r.id = i.result_id
      WHERE i.notice_id = :noticeId GROUP BY w.name, w.employee_number, i.date, r.at_ear_db, r.outside_db ORDER BY w.name, i.date`,
     { noticeId },
@@ -142,10 +141,10 @@ export async function noticeMail(noticeId: string, publicUrl: string): Promise<M
   return overLimitMail(i18n, locale, {
     ...head,
     replaces: head.replacesId !== null,
-    items: items.map(({ kinds, remedyNames, ...item }) => ({
+    items: items.map(({ kinds, proposed, ...item }) => ({
       ...item,
       kinds: kinds as FindingKind[],
-      remedyNames: remedyNames ?? [],
+      remedy: remedyOf({ remedy: proposed }),
     })),
     link: `${publicUrl}/${head.audience === "worker" ? "" : head.audience === "supervisor" ? "crew-sheet" : "findings"}`,
   });

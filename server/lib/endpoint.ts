@@ -4,7 +4,7 @@ import type { z } from "zod";
 import { loadActor } from "../auth/actor";
 import { canonicalJson } from "./audit";
 import { execute, inTransaction, row } from "./db";
-import { AppError, forbidden, fromDatabase, unprocessable } from "./errors";
+import { AppError, forbidden, fromDatabase, notFound, unprocessable } from "./errors";
 import { dropStaged, type StagedFile } from "./file-store";
 import type { Actor } from "./policy";
 import { readUpload } from "./upload";
@@ -117,6 +117,16 @@ function parse(schema: Schema, value: unknown): unknown {
   throw unprocessable(parsed.error.issues.map(toIssue));
 }
 
+/** What an address names by an id that is no id, or a date that is no date, is not there: no field of a form is wrong. */
+function parsePath(schema: Schema, params: unknown): unknown {
+  try {
+    return parse(schema, params);
+  } catch (error) {
+    if (error instanceof AppError && error.code === "invalid") throw notFound();
+    throw error;
+  }
+}
+
 function toIssue(found: z.core.$ZodIssue) {
   const params: Record<string, string | number> = {};
   for (const name of ["minimum", "maximum", "expected", "format", "origin"] as const) {
@@ -209,7 +219,7 @@ async function answer(
   const run = async (actor: Actor | null) => {
     const call = {
       actor,
-      params: parse(spec.params, request.params),
+      params: parsePath(spec.params, request.params),
       query: parse(spec.query, request.query),
       body: parse(spec.body, request.body),
       ifMatch: spec.needsRevision ? readIfMatch(request) : 0,

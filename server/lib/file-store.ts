@@ -1,6 +1,6 @@
 import { createHash, randomUUID } from "node:crypto";
 import { createReadStream, createWriteStream, type ReadStream } from "node:fs";
-import { mkdir, open, rename, rm, stat } from "node:fs/promises";
+import { mkdir, open, readdir, rename, rm, stat } from "node:fs/promises";
 import path from "node:path";
 import { Transform } from "node:stream";
 import { pipeline } from "node:stream/promises";
@@ -14,7 +14,7 @@ export interface StagedFile {
   readonly sha256: string;
 }
 
-/** Where files are kept by their content. Another store, of objects, has these four. */
+/** Where files are kept by their content. Another store, of objects, has these. */
 export interface FileStore {
   /** Takes a stream in; what is cut off or too large leaves nothing behind. */
   stage(content: NodeJS.ReadableStream, limitBytes: number): Promise<StagedFile>;
@@ -24,7 +24,12 @@ export interface FileStore {
   pathOf(organizationId: string, sha256: string): string;
   read(organizationId: string, sha256: string): ReadStream;
   remove(organizationId: string, sha256: string): Promise<void>;
+  /** Takes away what a process that ended left on its way in. */
+  sweep(): Promise<void>;
 }
+
+/** Nothing is written to for so long and still on its way in, ms. */
+const FORGOTTEN_MS = 24 * 60 * 60 * 1000;
 
 class FolderStore implements FileStore {
   constructor(readonly folder: string) {}
@@ -73,6 +78,15 @@ class FolderStore implements FileStore {
   async remove(organizationId: string, sha256: string): Promise<void> {
     await rm(this.pathOf(organizationId, sha256), { force: true });
   }
+
+  async sweep(): Promise<void> {
+    const staging = path.join(this.folder, "staging");
+    for (const name of await readdir(staging).catch(() => [])) {
+      const found = await stat(path.join(staging, name)).catch(() => null);
+      if (found && found.mtimeMs < Date.now() - FORGOTTEN_MS)
+        await rm(path.join(staging, name), { force: true });
+    }
+  }
 }
 
 let instance: FileStore | undefined;
@@ -104,8 +118,8 @@ export async function sniffMediaType(file: string): Promise<string> {
     if (startsWith(head, "\x89PNG\r\n\x1a\n")) return "image/png";
     if (head[0] === 0xff && head[1] === 0xd8 && head[2] === 0xff) return "image/jpeg";
     if (startsWith(head, "RIFF") && startsWith(head, "WEBP", 8)) return "image/webp";
-    if ((startsWith(head, "RIFF") || startsWith(head, "RF64")) && startsWith(head, "WAVE", 8))
-      return "audio/wav";
+    const isSound = ["RIFF", "RF64", "BW64"].some((name) => startsWith(head, name));
+    if (isSound && startsWith(head, "WAVE", 8)) return "audio/wav";
     if (startsWith(head, "%PDF-")) return "application/pdf";
     if (startsWith(head, "PK\x03\x04"))
       return "application/vnd.openxmlformats-officedocument.spreadsheetml.sheet";

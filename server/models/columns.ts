@@ -13,6 +13,11 @@ export const uuid = () => ({ type: DataTypes.UUID, allowNull: false });
 export const uuidOrNull = () => ({ type: DataTypes.UUID, allowNull: true });
 export const text = () => ({ type: DataTypes.TEXT, allowNull: false });
 export const textOrNull = () => ({ type: DataTypes.TEXT, allowNull: true });
+export const texts = () => ({
+  type: DataTypes.ARRAY(DataTypes.TEXT),
+  allowNull: false,
+  defaultValue: [],
+});
 export const whole = () => ({ type: DataTypes.INTEGER, allowNull: false });
 
 export const numberOrNull = () => ({ type: DataTypes.DOUBLE, allowNull: true });

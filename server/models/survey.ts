@@ -6,7 +6,7 @@ import {
   type Sequelize,
 } from "sequelize";
 import type { HistoryHead, HistoryMapping, HistoryReport } from "../../shared/schemas/history";
-import type { RecordingAnalysis, RecordingCalibration } from "../../shared/schemas/recording";
+import type { RecordingAnalysis, RecordingCalibration, RecordingView } from "../../shared/schemas/recording";
 import type { RiskFactors } from "../../shared/schemas/survey";
 import * as column from "./columns";
 
@@ -57,8 +57,13 @@ export class HistoryImport extends Model<
   declare organizationId: string;
   declare siteId: string;
   declare instrumentId: string;
-  declare fileId: string;
+  /** Null once it is cancelled: the file is gone. */
+  declare fileId: CreationOptional<string | null>;
+  declare fileName: string;
+  declare sizeBytes: number;
   declare runId: CreationOptional<string | null>;
+  /** Whose new run it becomes, where it belongs to none that is recorded. */
+  declare workerId: CreationOptional<string | null>;
   declare state:
     | "uploaded"
     | "reading"
@@ -71,6 +76,8 @@ export class HistoryImport extends Model<
   declare head: CreationOptional<HistoryHead | null>;
   declare mapping: CreationOptional<HistoryMapping | null>;
   declare report: CreationOptional<HistoryReport | null>;
+  declare answers: CreationOptional<string[]>;
+  declare historyId: CreationOptional<string | null>;
   declare authorId: CreationOptional<string | null>;
   declare revision: CreationOptional<number>;
 }
@@ -103,12 +110,14 @@ export class Recording extends Model<
   declare organizationId: string;
   declare siteId: string;
   declare taskId: string;
-  declare runId: CreationOptional<string | null>;
   declare fileName: string;
-  declare state: "uploaded" | "analysing" | "analysed" | "failed" | "cancelled";
-  declare calibration: CreationOptional<RecordingCalibration | null>;
+  declare state: "uploaded" | "analysing" | "asked" | "analysed" | "failed" | "cancelled";
+  declare calibration: RecordingCalibration;
   declare analysis: CreationOptional<RecordingAnalysis | null>;
-  declare audioPath: CreationOptional<string | null>;
+  declare failure: CreationOptional<RecordingView["failure"]>;
+  declare accepted: CreationOptional<RecordingView["accepted"]>;
+  /** Of the audio, while it is here. */
+  declare fileId: CreationOptional<string | null>;
   declare keepReason: CreationOptional<string | null>;
   declare deleteOn: CreationOptional<string | null>;
   declare authorId: CreationOptional<string | null>;
@@ -159,12 +168,17 @@ export function defineSurveyModels(sequelize: Sequelize): void {
       organizationId: column.uuid(),
       siteId: column.uuid(),
       instrumentId: column.uuid(),
-      fileId: column.uuid(),
+      fileId: column.uuidOrNull(),
+      fileName: column.text(),
+      sizeBytes: column.whole(),
       runId: column.uuidOrNull(),
+      workerId: column.uuidOrNull(),
       state: column.text(),
       head: column.jsonOrNull(),
       mapping: column.jsonOrNull(),
       report: column.jsonOrNull(),
+      answers: column.texts(),
+      historyId: column.uuidOrNull(),
       authorId: column.uuidOrNull(),
       revision: column.revision(),
     },
@@ -193,12 +207,13 @@ export function defineSurveyModels(sequelize: Sequelize): void {
       organizationId: column.uuid(),
       siteId: column.uuid(),
       taskId: column.uuid(),
-      runId: column.uuidOrNull(),
       fileName: column.text(),
       state: column.text(),
-      calibration: column.jsonOrNull(),
+      calibration: column.json(),
       analysis: column.jsonOrNull(),
-      audioPath: column.textOrNull(),
+      failure: column.jsonOrNull(),
+      accepted: column.json(),
+      fileId: column.uuidOrNull(),
       keepReason: column.textOrNull(),
       deleteOn: column.dayOrNull(),
       authorId: column.uuidOrNull(),

@@ -40,6 +40,12 @@ export const historyPolicy = policy<AtSite>()({
   can: { change: officerAt },
 });
 
+/** A recording's audio holds speech: the officer's to hear, and nobody's to read the programme by. */
+export const audioPolicy = policy<AtSite>()({
+  sees: (actor, a) => [actor.at(`${a}.site_id`, "officer")],
+  can: {},
+});
+
 /** Areas, tasks, jobs and instruments describe the programme, not a person. */
 export const programmePolicy = policy<AtSite>()({
   sees: (actor, t) => [actor.at(`${t}.site_id`, "officer", "auditor", "supervisor")],
@@ -168,7 +174,7 @@ const tableOfSubject = {
 };
 
 /** The site an event is about, by its subject. */
-const siteOfEvent = (e: string) => `(CASE ${e}.subject_kind WHEN 'site' THEN ${e}.subject_id
+export const siteOfEvent = (e: string) => `(CASE ${e}.subject_kind WHEN 'site' THEN ${e}.subject_id
   ${Object.entries(tableOfSubject)
     .map(
       ([kind, table]) =>
@@ -193,6 +199,8 @@ export const may = {
   readProgramme: (actor: Actor) => actor.is("officer", "auditor", "supervisor"),
   readDays: (actor: Actor) => actor.is("officer", "auditor", "supervisor", "worker"),
   readCrews: (actor: Actor) => actor.is("officer", "auditor", "supervisor"),
+  /** Surveys, outings and what hangs on an instrument. */
+  readMeasuring: (actor: Actor) => actor.is("officer", "auditor"),
   followUp: (actor: Actor) => actor.is("officer", "supervisor"),
   export: (actor: Actor) => actor.is("officer", "auditor"),
   reportProblem: (actor: Actor) => actor.is("worker"),

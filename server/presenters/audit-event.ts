@@ -10,6 +10,7 @@ export function presentAuditEvent(row: AuditEventRow): AuditEventView {
     action: row.action,
     subjectKind: row.subjectKind,
     subjectId: row.subjectId,
+    timeZone: row.timeZone,
     values: row.values,
     isSealed: row.isSealed,
   };

@@ -24,6 +24,13 @@ export function presentTaskLevel(row: TaskLevelRow): z.infer<typeof TaskLevelVie
     grade: row.grade,
     sourceNote: row.sourceNote,
     reason: row.reason,
+    surveyId: row.surveyId,
+    surveyName: row.surveyName,
+    recordingId: row.recordingId,
+    recordingName: row.recordingName,
+    strategy: row.strategy,
+    keptReasons: row.keptReasons,
+    samples: row.samples,
     authorName: row.authorName,
     createdAt: row.createdAt.toISOString(),
   };

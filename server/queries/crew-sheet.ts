@@ -2,11 +2,13 @@ import type { z } from "zod";
 import { evaluateDay } from "../../shared/acoustics/day";
 import { buildDayInput, type DayContext } from "../../shared/day/build-day-input";
 import { summarizeDay } from "../../shared/day/summarize-day";
+import { foldOrders, ORDER_KINDS } from "../../shared/findings/orders";
 import { ruleSetVersion } from "../../shared/rule-sets";
 import type { CrewSheetRow, CrewSheetView } from "../../shared/schemas/crew";
 import type { FindingKind, FindingState } from "../../shared/schemas/finding";
 import { todayAt } from "../lib/calendar";
 import { row, rows } from "../lib/db";
+import { groupBy } from "../lib/group-by";
 import { type Actor, visible } from "../lib/policy";
 import type { Crew } from "../models/worker";
 import { crewPolicy, findingPolicy } from "../policies";
@@ -20,21 +22,10 @@ interface OrderRow {
   kind: FindingKind;
   state: FindingState;
   facts: Record<string, unknown>;
+  lastDate: string;
   revision: number;
   siteId: string;
 }
-
-/** What a supervisor acts on, most urgent first. */
-const urgency: readonly FindingKind[] = [
-  "no-protector",
-  "over-limit-at-ear",
-  "dual-protection",
-  "protects-too-little",
-  "peak-or-ceiling",
-  "not-worn-long-enough",
-  "wearing-unknown",
-  "protects-too-much",
-];
 
 /** A crew's expected day, computed from roster, nominal day and usual task levels, beside its last recorded one. */
 export async function crewSheet(actor: Actor, crew: Crew): Promise<z.input<typeof CrewSheetView>> {
@@ -51,7 +42,7 @@ export async function crewSheet(actor: Actor, crew: Crew): Promise<z.input<typeo
     members.map(({ id }) => id),
   );
   const last = await row<{ date: string }>(
-    "SELECT max(date)::text AS date FROM days WHERE crew_id = :crewId AND date < CAST(:today AS date) AND current_result_id IS NOT NULL",
+    "SELECT max(date)::text AS date FROM days WHERE crew_id = :crewId AND date <= CAST(:today AS date) AND current_result_id IS NOT NULL",
     { crewId: crew.id, today },
   );
   const lastDate = last?.date ?? null;
@@ -174,21 +165,16 @@ async function openOrders(
 ): Promise<Map<string, NonNullable<CrewSheetRow["order"]>>> {
   if (workerIds.length === 0) return new Map();
   const found = await rows<OrderRow>(
-    `SELECT f.worker_id AS "workerId", f.id AS "findingId", f.kind, f.state, f.facts, f.revision, f.site_id AS "siteId" FROM findings f
+    `SELECT f.worker_id AS "workerId", f.id AS "findingId", f.kind, f.state, f.facts, f.last_date::text AS "lastDate", f.revision, f.site_id AS "siteId" FROM findings f
      WHERE f.worker_id = ANY (CAST(:ids AS uuid[])) AND f.state <> 'closed' AND ${visible(findingPolicy, actor, "f")}`,
     { ids: `{${workerIds.join(",")}}` },
   );
-  const rank = ({ kind, state }: OrderRow) =>
-    urgency.indexOf(kind) + (state === "done" ? urgency.length : 0);
-  const orders = new Map<string, NonNullable<CrewSheetRow["order"]>>();
-  for (const { workerId, siteId, ...order } of found
-    .filter(({ kind }) => urgency.includes(kind))
-    .sort((a, b) => rank(a) - rank(b))) {
-    if (!orders.has(workerId))
-      orders.set(workerId, {
-        ...order,
-        canMarkDone: findingPolicy.can.markDone(actor, { siteId }) && order.state !== "done",
-      });
-  }
-  return orders;
+  const ofSheet = found.filter(({ kind }) => ORDER_KINDS.includes(kind));
+  return new Map(
+    [...groupBy(ofSheet, ({ workerId }) => workerId)].map(([workerId, findings]) => {
+      const { findingId, kind, state, facts, revision, siteId } = foldOrders(findings)[0]!.lead;
+      const canMarkDone = findingPolicy.can.markDone(actor, { siteId }) && state !== "done";
+      return [workerId, { findingId, kind, state, facts, revision, canMarkDone }];
+    }),
+  );
 }

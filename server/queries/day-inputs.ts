@@ -64,6 +64,12 @@ interface ShiftTaskRow {
   outerRevisionId: string | null;
 }
 
+/**
+ * SQL: a run that says something about its worker's day. One that is out says nothing yet; a sample of a task speaks for
+ * the task, and reaches the days of all who do it through the task's level.
+ */
+export const IS_OF_DAY = "NOT r.is_void AND NOT r.is_out AND r.task_id IS NULL";
+
 const wanted = `wanted AS (SELECT "workerId" AS worker_id, date FROM jsonb_to_recordset($1::jsonb) AS x("workerId" uuid, date date))`;
 
 /** SQL for the revision of a protector's data that is in force on a date. */
@@ -107,7 +113,8 @@ export async function resolveDays(days: readonly DayKey[]): Promise<ResolvedDay[
   }>(
     `WITH ${wanted}
      SELECT w.worker_id AS "workerId", w.date::text AS date, r.shift_id AS "shiftId", r.current_revision_id AS "revisionId"
-     FROM wanted w JOIN runs r ON r.worker_id = w.worker_id AND r.date = w.date AND NOT r.is_void
+     FROM wanted w JOIN runs r ON r.worker_id = w.worker_id AND r.date = w.date AND ${IS_OF_DAY}
+     JOIN run_revisions v ON v.id = r.current_revision_id AND (v.doubts = '{}' OR v.kept_reason IS NOT NULL)
      ORDER BY r.id`,
     parameter,
   );
@@ -196,8 +203,11 @@ export async function resolveDays(days: readonly DayKey[]): Promise<ResolvedDay[
   );
 }
 
-interface LevelRow extends Omit<TaskLevel, "revisionId" | "peak" | "octaveBandsDb"> {
+interface LevelRow
+  extends Omit<TaskLevel, "revisionId" | "peak" | "octaveBandsDb" | "strategy" | "keptReasons"> {
   id: string;
+  strategy: NonNullable<TaskLevel["strategy"]>;
+  keptReasons: string[];
   octaveBandsDb: OctaveBandValues | null;
   peakDb: number | null;
   peakWeighting: "A" | "C" | "Z" | null;
@@ -207,7 +217,7 @@ export const LEVEL_COLUMNS = (
   l: string,
 ) => `${l}.id, ${l}.metric, ${l}.level_db AS "levelDb", ${l}.lc_minus_la_db AS "lcMinusLaDb",
   ${l}.octave_bands_db AS "octaveBandsDb", ${l}.las_max_db AS "lasMaxDb", ${l}.peak_db AS "peakDb", ${l}.peak_weighting AS "peakWeighting",
-  ${l}.samples_db AS "samplesDb", ${l}.instrument_class AS instrument, ${l}.grade`;
+  ${l}.samples_db AS "samplesDb", ${l}.instrument_class AS instrument, ${l}.grade, ${l}.strategy, ${l}.kept_reasons AS "keptReasons"`;
 
 export function toTaskLevel(row: LevelRow): TaskLevel {
   const { id, peakDb, peakWeighting, ...facts } = row;

@@ -23,8 +23,17 @@ type Found = Omit<FindingRow, "figures" | "can" | "worker"> & {
   figures: DayFiguresRow | null;
 };
 
+/** Since when other rules govern the site than those that a finding rests on. An instrument or a report rests on none. */
+const RULES_UNTIL = `(SELECT coalesce(
+      (SELECT min(later.effective_from) FROM site_settings later WHERE later.site_id = f.site_id AND later.effective_from > f.last_date
+        AND later.effective_from <= current_date AND later.governing_rule_set <> rested.key), now.effective_from)::text
+    FROM (SELECT coalesce(f.facts->>'ruleSetKey', (SELECT r.governing_rule_set FROM day_results r WHERE r.id = f.last_result_id)) AS key) rested,
+      (SELECT s.effective_from, s.governing_rule_set FROM site_settings s WHERE s.site_id = f.site_id AND s.effective_from <= current_date
+       ORDER BY s.effective_from DESC, s.number DESC LIMIT 1) now
+    WHERE now.governing_rule_set <> rested.key)`;
+
 const SELECT_FINDINGS = `SELECT f.id, f.kind, f.state, f.criterion, f.use_key AS "useKey", f.facts, f.first_date::text AS "firstDate", f.last_date::text AS "lastDate",
-    f.days_count AS "daysCount", f.due_on::text AS "dueOn", f.site_id AS "siteId", f.revision, w.id AS "workerId", w.name AS "workerName",
+    f.days_count AS "daysCount", f.due_on::text AS "dueOn", ${RULES_UNTIL} AS "rulesUntil", f.site_id AS "siteId", f.revision, w.id AS "workerId", w.name AS "workerName",
     w.employee_number AS "employeeNumber", coalesce(j.name, i.name) AS "subjectName",
     (SELECT c.name FROM crew_memberships m JOIN crews c ON c.id = m.crew_id WHERE m.worker_id = f.worker_id AND m.valid @> f.last_date LIMIT 1) AS "crewName",
     o.name AS "ownerName",

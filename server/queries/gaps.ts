@@ -51,7 +51,7 @@ const gapQueries: Record<Kind, (actor: Actor) => string> = {
     FROM year_days d JOIN workers w ON w.id = d.worker_id LEFT JOIN jobs j ON j.id = w.job_id
     WHERE d.outside_db > ${IN_NOISE_DB} AND d.grade IN ('task-level', 'estimate')
       AND NOT EXISTS (SELECT 1 FROM runs m WHERE m.worker_id = d.worker_id AND m.date >= make_date(:year, 1, 1)
-        AND m.date <= make_date(:year, 12, 31) AND NOT m.is_void)
+        AND m.date <= make_date(:year, 12, 31) AND NOT m.is_void AND NOT m.is_out AND m.task_id IS NULL)
     GROUP BY d.worker_id`,
   "no-protector": (actor) => `
     SELECT f.worker_id AS id, max(k.name) AS note, max(d.date) AS date

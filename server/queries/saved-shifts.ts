@@ -2,7 +2,7 @@ import type { MeterSettings, Unaccounted } from "../../shared/acoustics/types";
 import type { GridRun, SavedShift, ShiftTaskInput } from "../../shared/schemas/shift";
 import { atLocalTime } from "../../shared/time/zone";
 import { rows } from "../lib/db";
-import { instrumentClass } from "./day-inputs";
+import { IS_OF_DAY, instrumentClass } from "./day-inputs";
 
 export interface SavedShiftRow {
   shiftId: string;
@@ -93,7 +93,7 @@ export async function readingsOfDay(
        g.threshold_db AS "thresholdDb", g.weighting, g.response, g.dose_pct AS "dosePct", g.average_db AS "averageDb", g.lceq_db AS "lceqDb",
        g.las_max_db AS "lasMaxDb", g.peak_db AS "peakDb", g.peak_weighting AS "peakWeighting"
      FROM runs r JOIN run_revisions v ON v.id = r.current_revision_id JOIN readings g ON g.run_revision_id = v.id JOIN instruments i ON i.id = r.instrument_id
-     WHERE r.worker_id = ANY (CAST(:workerIds AS uuid[])) AND r.date = :date AND NOT r.is_void ORDER BY r.id, g.position`,
+     WHERE r.worker_id = ANY (CAST(:workerIds AS uuid[])) AND r.date = :date AND ${IS_OF_DAY} ORDER BY r.id, g.position`,
           { workerIds: `{${workerIds.join(",")}}`, date },
         );
   const byWorker = new Map<string, GridRun[]>();

@@ -40,15 +40,55 @@ export async function listTaskLevels(
          l.lc_minus_la_db AS "lcMinusLaDb", l.octave_bands_db AS "octaveBandsDb", l.las_max_db AS "lasMaxDb", l.peak_db AS "peakDb",
          l.peak_weighting AS "peakWeighting", l.samples_db AS "samplesDb", l.instrument_class AS instrument, l.grade,
          l.source_note AS "sourceNote", l.reason, u.name AS "authorName", l.created_at AS "createdAt",
+         l.survey_id AS "surveyId", y.name AS "surveyName", l.recording_id AS "recordingId", c.file_name AS "recordingName", l.strategy, l.kept_reasons AS "keptReasons",
+         coalesce((SELECT json_agg(json_build_object('runId', p.run_id, 'date', r.date::text, 'levelDb', p.level_db, 'fromS', p.from_s, 'toS', p.to_s)
+           ORDER BY p.position) FROM task_level_samples p JOIN runs r ON r.id = p.run_id WHERE p.task_level_id = l.id), '[]') AS samples,
          l.id IS NOT DISTINCT FROM (
            SELECT f.id FROM task_levels f
            WHERE f.task_id = l.task_id AND f.effective_from <= (now() AT TIME ZONE s.time_zone)::date
            ORDER BY f.effective_from DESC, f.number DESC LIMIT 1) AS "isInForce"
        FROM task_levels l JOIN tasks t ON t.id = l.task_id JOIN sites s ON s.id = t.site_id LEFT JOIN users u ON u.id = l.author_id
+         LEFT JOIN surveys y ON y.id = l.survey_id LEFT JOIN recordings c ON c.id = l.recording_id
        WHERE l.task_id IN (:taskIds)) level
      WHERE :all OR level."isInForce"
      ORDER BY level."effectiveFrom" DESC, level.number DESC`,
     { taskIds, all: which === "all" },
+  );
+}
+
+/** The level of a task on a date, with each sample's run revision. */
+export async function levelInForce(taskId: string, date: string) {
+  type Own = Pick<
+    TaskLevelRow,
+    | "metric"
+    | "levelDb"
+    | "lasMaxDb"
+    | "samplesDb"
+    | "instrument"
+    | "grade"
+    | "sourceNote"
+    | "surveyId"
+    | "strategy"
+    | "keptReasons"
+  > & {
+    peak: LevelView["peak"];
+    samples: {
+      runId: string;
+      runRevisionId: string;
+      fromS: number | null;
+      toS: number | null;
+      levelDb: number;
+    }[];
+  };
+  return row<Own>(
+    `SELECT l.metric, l.level_db AS "levelDb", l.las_max_db AS "lasMaxDb", l.samples_db AS "samplesDb", l.instrument_class AS instrument,
+       l.grade, l.source_note AS "sourceNote", l.survey_id AS "surveyId", l.strategy, l.kept_reasons AS "keptReasons",
+       CASE WHEN l.peak_db IS NOT NULL THEN json_build_object('levelDb', l.peak_db, 'weighting', l.peak_weighting) END AS peak,
+       coalesce((SELECT json_agg(json_build_object('runId', p.run_id, 'runRevisionId', p.run_revision_id, 'levelDb', p.level_db, 'fromS', p.from_s, 'toS', p.to_s)
+         ORDER BY p.position) FROM task_level_samples p WHERE p.task_level_id = l.id), '[]') AS samples
+     FROM task_levels l WHERE l.task_id = :taskId AND l.effective_from <= CAST(:date AS date)
+     ORDER BY l.effective_from DESC, l.number DESC LIMIT 1`,
+    { taskId, date },
   );
 }
 

@@ -1,4 +1,5 @@
 import type { z } from "zod";
+import { ruleSetInForce } from "../../shared/rule-sets";
 import type { WaitingView } from "../../shared/schemas/waiting";
 import { todayAt } from "../lib/calendar";
 import { rows } from "../lib/db";
@@ -25,8 +26,8 @@ export async function waitingFor(
   actor: Actor,
   siteId: string | undefined,
 ): Promise<z.input<typeof WaitingView>> {
-  const sites = await rows<{ id: string; timeZone: string }>(
-    `SELECT s.id, s.time_zone AS "timeZone" FROM sites s WHERE ${visible(sitePolicy, actor, "s")} ${siteId ? "AND s.id = :siteId" : ""}`,
+  const sites = await rows<{ id: string; name: string; timeZone: string }>(
+    `SELECT s.id, s.name, s.time_zone AS "timeZone" FROM sites s WHERE ${visible(sitePolicy, actor, "s")} ${siteId ? "AND s.id = :siteId" : ""} ORDER BY s.name`,
     { siteId },
   );
   const days = sites.map(({ id, timeZone }) => ({
@@ -64,6 +65,7 @@ export async function waitingFor(
   );
   return {
     today: days[0]?.date ?? todayAt("UTC"),
+    ruleSets: await governingRuleSets(sites, days),
     crews,
     findings: findings.rows.filter(({ state }) => state !== "done"),
     next: findings.next,
@@ -72,4 +74,24 @@ export async function waitingFor(
     troubled,
     calibrationsDue: due,
   };
+}
+
+async function governingRuleSets(
+  sites: readonly { id: string; name: string }[],
+  days: readonly { siteId: string; date: string }[],
+): Promise<z.input<typeof WaitingView>["ruleSets"]> {
+  const found = await rows<{ siteId: string; ruleSetKey: string; date: string }>(
+    `SELECT DISTINCT ON (x."siteId") x."siteId", x.date::text AS date, s.governing_rule_set AS "ruleSetKey"
+     FROM jsonb_to_recordset(CAST(:days AS jsonb)) AS x("siteId" uuid, date date)
+     JOIN site_settings s ON s.site_id = x."siteId" AND s.effective_from <= x.date
+     ORDER BY x."siteId", s.effective_from DESC, s.number DESC`,
+    { days: JSON.stringify(days) },
+  );
+  return sites.flatMap(({ id, name }) => {
+    const settings = found.find(({ siteId }) => siteId === id);
+    const ruleSet = settings && ruleSetInForce(settings.ruleSetKey, settings.date);
+    return ruleSet
+      ? [{ siteId: id, siteName: name, ruleSetKey: ruleSet.key, ruleSetVersion: ruleSet.version }]
+      : [];
+  });
 }

@@ -14,8 +14,8 @@ export function defineAuditRoutes(): void {
       reply: AuditEventPage,
     },
     async ({ actor, query }) => {
-      const { rows, next } = await pageOfAuditEvents(actor, query);
-      return { rows: rows.map(presentAuditEvent), next };
+      const { rows, next, names } = await pageOfAuditEvents(actor, query);
+      return { rows: rows.map(presentAuditEvent), next, names };
     },
   );
 }

@@ -1,7 +1,9 @@
+import { createI18n, isLocale } from "../../shared/i18n";
 import {
   GapNames,
   GapNamesQuery,
   GapsView,
+  YearDictionaryQuery,
   YearFileQuery,
   YearQuery,
 } from "../../shared/schemas/waiting";
@@ -62,12 +64,18 @@ export function defineExportRoutes(config: Pick<Config<"web">, "DATABASE_URL">):
 
   endpoint.get(
     "/exports/year-dictionary.csv",
-    { summary: "What each column of a year's file means", may: may.export },
-    ({ response }) => {
+    {
+      summary: "What each column of a year's file means",
+      may: may.export,
+      query: YearDictionaryQuery,
+    },
+    async ({ query, actor, response }) => {
+      const language = query.language ?? actor.language;
+      const i18n = await createI18n(isLocale(language) ? language : "en", ["mail"]);
       response
         .attachment("year-dictionary.csv")
         .type("text/csv; charset=utf-8; header=present")
-        .send(yearDictionary());
+        .send(yearDictionary(i18n));
     },
   );
 

@@ -7,20 +7,29 @@ import { defineDayEntryRoutes } from "./day-entry";
 import { defineDayRoutes } from "./days";
 import { defineEvaluateRoutes } from "./evaluate";
 import { defineExportRoutes } from "./exports";
+import { defineFileRoutes } from "./files";
 import { defineFindingRoutes } from "./findings";
+import { defineGroupRoutes } from "./groups";
+import { defineHistoryRoutes } from "./histories";
+import { defineHistoryImportRoutes } from "./history-imports";
 import { defineImportRoutes } from "./imports";
 import { defineInstrumentRoutes } from "./instruments";
 import { defineJobRoutes } from "./jobs";
 import { defineNoticeRoutes } from "./notices";
+import { defineOutingRoutes } from "./outings";
 import { definePreviewRoutes } from "./previews";
 import { defineProtectorRoutes } from "./protectors";
+import { defineRecordingRoutes } from "./recordings";
 import { defineRuleSetRoutes } from "./rule-sets";
 import { defineRunRoutes } from "./runs";
+import { defineSampleRoutes } from "./samples";
 import { defineSearchRoutes } from "./search";
 import { defineSiteRoutes } from "./sites";
+import { defineSurveyRoutes } from "./surveys";
 import { defineTaskRoutes } from "./tasks";
 import { defineUserRoutes } from "./users";
 import { defineWorkerRoutes } from "./workers";
+import { defineWorkplaceChangeRoutes } from "./workplace-changes";
 
 /** Every resource's routes, declared once per process. */
 export function defineRoutes(config: Config<"web">): void {
@@ -35,15 +44,24 @@ export function defineRoutes(config: Config<"web">): void {
   defineAssignmentRoutes();
   defineAuditRoutes();
   defineCrewRoutes();
+  defineHistoryImportRoutes();
+  defineHistoryRoutes();
   defineImportRoutes();
   defineInstrumentRoutes();
   defineJobRoutes();
+  defineFileRoutes();
+  defineGroupRoutes();
+  defineOutingRoutes();
+  defineSampleRoutes();
   definePreviewRoutes();
   defineProtectorRoutes();
+  defineRecordingRoutes();
   defineRuleSetRoutes();
   defineSearchRoutes();
   defineSiteRoutes();
+  defineSurveyRoutes();
   defineTaskRoutes();
   defineUserRoutes();
   defineWorkerRoutes();
+  defineWorkplaceChangeRoutes();
 }

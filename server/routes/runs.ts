@@ -1,41 +1,18 @@
 import { randomUUID } from "node:crypto";
 import { IdParams } from "../../shared/schemas/common";
 import { RunCorrection, RunFilter, RunInput, RunPage, RunView } from "../../shared/schemas/run";
-import { recomputeDays } from "../commands/recompute-days";
+import { recomputeRunDay } from "../commands/recompute-run-day";
 import { correctRun, recordRun } from "../commands/record-run";
-import { scheduleNotices } from "../commands/schedule-notices";
 import { todayAt } from "../lib/calendar";
-import { execute, row } from "../lib/db";
+import { row } from "../lib/db";
 import { endpoint } from "../lib/endpoint";
-import { forbidden, issue, stale, unprocessable } from "../lib/errors";
-import { type Actor, authorize, findVisible } from "../lib/policy";
+import { AppError, forbidden, issue, stale, unprocessable } from "../lib/errors";
+import { authorize, findVisible } from "../lib/policy";
 import { Instrument, Run } from "../models/instrument";
 import { Shift } from "../models/shift";
 import { Worker } from "../models/worker";
 import { may, programmePolicy, runPolicy, shiftPolicy, workerPolicy } from "../policies";
 import { listRuns, runView } from "../queries/run-view";
-
-/** The day that a run belongs to, computed anew where a shift is there already; otherwise it waits for one. */
-async function recomputeDayOf(
-  actor: Actor,
-  siteId: string,
-  workerId: string,
-  date: string,
-  entryId: string,
-): Promise<void> {
-  await execute("UPDATE days SET is_stale = TRUE WHERE worker_id = $1 AND date = $2::date", [
-    workerId,
-    date,
-  ]);
-  const recomputed = await recomputeDays(actor.organizationId, [{ workerId, date }]);
-  await scheduleNotices({
-    organizationId: actor.organizationId,
-    author: actor,
-    entryId,
-    siteId,
-    recomputed,
-  });
-}
 
 export function defineRunRoutes(): void {
   endpoint.get(
@@ -71,18 +48,16 @@ export function defineRunRoutes(): void {
       if (body.date > today) throw unprocessable([issue(["date"], "in-the-future", { today })]);
       if (body.date < worker.hiredOn)
         throw unprocessable([issue(["date"], "before-hire", { hiredOn: worker.hiredOn })]);
-      if (
-        instrument.calibrationDueOn !== null &&
-        instrument.calibrationDueOn < body.date &&
-        body.keptReason === null
-      ) {
-        throw unprocessable([
-          issue(["keptReason"], "calibration-out-of-date", { dueOn: instrument.calibrationDueOn }),
-        ]);
-      }
+      if (instrument.isArchived || instrument.kind === "calibrator")
+        throw unprocessable([issue(["instrumentId"], "instrument-not-for-runs")]);
       const entryId = randomUUID();
       const id = await recordRun(actor, worker.siteId, body, entryId);
-      await recomputeDayOf(actor, worker.siteId, worker.id, body.date, entryId);
+      await recomputeRunDay(actor, {
+        siteId: worker.siteId,
+        workerId: worker.id,
+        date: body.date,
+        entryId,
+      });
       return runView(actor, await findVisible(Run, runPolicy, id, actor));
     },
   );
@@ -101,9 +76,11 @@ export function defineRunRoutes(): void {
       const run = await findVisible(Run, runPolicy, params.id, actor, { lock: true });
       authorize(runPolicy, actor, "correct", run);
       if (run.revision !== ifMatch) throw stale(await runView(actor, run));
+      if (run.isOut) throw new AppError("wrong-state", 409);
       const entryId = randomUUID();
       await correctRun(actor, run, body, entryId);
-      if (run.workerId) await recomputeDayOf(actor, run.siteId, run.workerId, run.date, entryId);
+      const { siteId, workerId, date } = run;
+      if (workerId) await recomputeRunDay(actor, { siteId, workerId, date, entryId });
       return runView(actor, await run.reload());
     },
   );

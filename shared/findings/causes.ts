@@ -48,7 +48,16 @@ export function findCauses(
     kind: FindingKind,
     facts: Cause["facts"] = {},
     more: Partial<Omit<Cause, "kind" | "facts">> = {},
-  ) => causes.push({ kind, concerns: "worker", criterion: "", useKey: "", facts, ...more });
+  ) =>
+    causes.push({
+      kind,
+      concerns: "worker",
+      criterion: "",
+      useKey: "",
+      // What it rests on stays with it: another rule may govern the site later.
+      facts: { ...facts, ruleSetKey: governing.key, ruleSetVersion: governing.version },
+      ...more,
+    });
 
   const timed = new Map(
     input.shifts.flatMap(({ tasks }) => tasks.map((task) => [task.id, task] as const)),
@@ -69,6 +78,7 @@ export function findCauses(
       levelDb: result.levelDb,
       dosePct: result.dosePct,
       valueDb: levelOf(criterion),
+      criterionId: criterion.id,
     };
     if (criterion.kind === "peak" || criterion.kind === "ceiling")
       add("peak-or-ceiling", { ...facts, what: criterion.kind }, about);

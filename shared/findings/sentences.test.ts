@@ -1,7 +1,9 @@
 import { setupI18n } from "@lingui/core";
 import { compileMessage } from "@lingui/message-utils/compileMessage";
 import { describe, expect, test } from "vitest";
+import { ruleSetVersion } from "../rule-sets";
 import { FINDING_KINDS, type FindingKind } from "../schemas/finding";
+import { citationOf } from "./basis";
 import type { FindingFacts } from "./facts";
 import { noticedSentence, orderSentence, remedyFigure } from "./sentences";
 import { workerSentence } from "./worker-sentence";
@@ -59,7 +61,7 @@ const cases: readonly {
       outsideDb: 92,
       remedy: { ...remedy, names: ["Sedge band"] },
     },
-    order: "Give Sedge band for Teardown",
+    order: "Give Sedge band",
     noticed: "Fenmuff low: 66.3 in Teardown while worn",
     worker:
       "Fenmuff low protects too much: you might miss a warning. Ask your supervisor for Sedge band.",
@@ -182,5 +184,73 @@ test("a ceiling is told apart from a peak", () => {
   );
   expect(orderSentence(i18n, "en", "peak-or-ceiling", facts)).toBe(
     "Find what was so loud, and bring it down",
+  );
+});
+
+const main = { modelIds: ["a"], names: ["Fenmuff"], isHeld: false };
+const inTeardown = {
+  modelIds: ["b", "c"],
+  names: ["Alder foam", "Fenmuff low"],
+  isHeld: false,
+  taskIds: ["t"],
+  taskNames: ["Teardown"],
+};
+
+test.each([
+  [{ ...main, inTasks: [inTeardown] }, "Give Fenmuff; in Teardown Alder foam and Fenmuff low"],
+  [
+    { ...main, isHeld: true, inTasks: [{ ...inTeardown, taskNames: ["Teardown", "Run-up"] }] },
+    "Give Alder foam and Fenmuff low for Teardown and Run-up",
+  ],
+  [
+    { ...main, inTasks: [{ ...inTeardown, isHeld: true }] },
+    "Give Fenmuff; in Teardown Alder foam and Fenmuff low",
+  ],
+])("a remedy by task is one order, the same on every finding of the day", (by, order) => {
+  const worn: FindingKind[] = [
+    "over-limit-at-ear",
+    "protects-too-little",
+    "protects-too-much",
+    "no-protector",
+  ];
+  for (const kind of worn)
+    expect(orderSentence(i18n, "en", kind, { remedy: by, taskName: "Rigging" })).toBe(order);
+});
+
+test("where nothing is to be given, what is left is said", () => {
+  const order = (kind: string) =>
+    orderSentence(i18n, "en", "no-protector", { remedy: null, left: { kind, taskName: "Run-up" } });
+  expect(order("lower-noise")).toBe(
+    "Lower the noise in Run-up first: no protector of the register is enough",
+  );
+  expect(order("shorten-time")).toBe(
+    "Shorten the time in Run-up or lower its noise first: no protector of the register is enough for the day",
+  );
+  expect(order("other-protector")).toBe(
+    "Find another protector for Run-up: none of the register takes the right amount",
+  );
+  expect(order("wear-throughout")).toBe("Ask why it came off at Run-up");
+});
+
+test("a rule with several averages says which one a level is", () => {
+  const facts = { levelDb: 92.34, dosePct: 138, valueDb: 90, ruleSetVersion: 1 };
+  const noticed = (ruleSetKey: string, criterionId: string) =>
+    noticedSentence(i18n, "en", "over-limit-outside", { ...facts, ruleSetKey, criterionId });
+  expect(noticed("us-general-industry", "limit")).toBe(
+    "92.3 (TWA, threshold 90) without protection, limit 90",
+  );
+  expect(noticed("us-general-industry", "action-value")).toBe(
+    "92.3 (TWA, threshold 80) without protection, limit 90",
+  );
+  expect(noticed("uk-2005", "limit")).toBe("92.3 without protection, limit 90");
+});
+
+test("a source is named once", () => {
+  const niosh = ruleSetVersion("niosh-rel", 1)!;
+  const dual = niosh.criteria.find(({ id }) => id === "dual-protection")!;
+  expect(citationOf(niosh, dual)).toBe("NIOSH 98-126, 1.6");
+  const uk = ruleSetVersion("uk-2005", 1)!;
+  expect(citationOf(uk, uk.criteria[0]!)).toBe(
+    "Control of Noise at Work Regulations 2005, regs. 4(1), 7(1), 10",
   );
 });

@@ -5,17 +5,44 @@ import { formatDuration } from "../format/duration";
 import { formatLevel, formatLevelChange, formatLimit } from "../format/level";
 import type { Locale } from "../i18n/index";
 import type { FindingKind } from "../schemas/finding";
-import {
-  type FindingFacts,
-  numberOf,
-  type ProposedRemedy,
-  protectorNames,
-  remedyOf,
-  textOf,
-} from "./facts";
+import { levelWithBasis } from "./basis";
+import { type FindingFacts, leftOf, numberOf, remedyOf, remedyWords, textOf } from "./facts";
 
-const giveRemedy = (i18n: I18n, remedy: ProposedRemedy): string =>
-  i18n.t("Give {protector}", { protector: protectorNames(i18n, remedy.names) });
+/** What a worker's protectors ask for: one order, whichever finding of the day it stands on. Null where nothing is known. */
+function protectorOrder(i18n: I18n, facts: FindingFacts): string | null {
+  const remedy = remedyOf(facts);
+  if (remedy) return i18n.t("Give {protector}", { protector: remedyWords(i18n, remedy) });
+  const left = leftOf(facts);
+  if (!left) return null;
+  const { kind, taskName: task } = left;
+  switch (kind) {
+    case "wear-throughout":
+      return task
+        ? i18n.t("Ask why it came off at {task}", { task })
+        : i18n.t("Ask why it came off");
+    case "lower-noise":
+      return task
+        ? i18n.t("Lower the noise in {task} first: no protector of the register is enough", {
+            task,
+          })
+        : i18n.t("Lower the noise first: no protector of the register is enough");
+    case "shorten-time":
+      return task
+        ? i18n.t(
+            "Shorten the time in {task} or lower its noise first: no protector of the register is enough for the day",
+            { task },
+          )
+        : i18n.t(
+            "Shorten the time in noise or lower it first: no protector of the register is enough for the day",
+          );
+    case "other-protector":
+      return task
+        ? i18n.t("Find another protector for {task}: none of the register takes the right amount", {
+            task,
+          })
+        : i18n.t("Find another protector: none of the register takes the right amount");
+  }
+}
 
 /**
  * What a supervisor or an officer has to do, as one order without a full stop: "Give Fenmuff and Sedge band", "Double up
@@ -27,39 +54,42 @@ export function orderSentence(
   kind: FindingKind,
   facts: FindingFacts,
 ): string {
-  const remedy = remedyOf(facts);
   const task = textOf(facts, "taskName");
+  const order = protectorOrder(i18n, facts);
   switch (kind) {
     case "over-limit-outside":
       return i18n.t("Bring the noise down, or the time in it");
     case "over-limit-at-ear":
-      return remedy
-        ? giveRemedy(i18n, remedy)
-        : i18n.t("Find protectors that are enough in each task, or shorten the time in noise");
+      return (
+        order ??
+        i18n.t("Find protectors that are enough in each task, or shorten the time in noise")
+      );
     case "protects-too-little":
-      if (remedy) return giveRemedy(i18n, remedy);
-      return task
-        ? i18n.t("Find a stronger protector for {task}", { task })
-        : i18n.t("Find a stronger protector");
+      return (
+        order ??
+        (task
+          ? i18n.t("Find a stronger protector for {task}", { task })
+          : i18n.t("Find a stronger protector"))
+      );
     case "protects-too-much":
-      if (remedy)
-        return task
-          ? i18n.t("Give {protector} for {task}", {
-              protector: protectorNames(i18n, remedy.names),
-              task,
-            })
-          : giveRemedy(i18n, remedy);
-      return task
-        ? i18n.t("Find a lighter protector for {task}", { task })
-        : i18n.t("Find a lighter protector");
+      return (
+        order ??
+        (task
+          ? i18n.t("Find a lighter protector for {task}", { task })
+          : i18n.t("Find a lighter protector"))
+      );
     case "dual-protection":
-      if (remedy && remedy.names.length > 1) return giveRemedy(i18n, remedy);
-      return task
-        ? i18n.t("Double up in {task}: a plug under a muff", { task })
-        : i18n.t("Double up: a plug under a muff");
+      return (
+        order ??
+        (task
+          ? i18n.t("Double up in {task}: a plug under a muff", { task })
+          : i18n.t("Double up: a plug under a muff"))
+      );
     case "no-protector":
-      if (remedy) return giveRemedy(i18n, remedy);
-      return task ? i18n.t("Find a protector for {task}", { task }) : i18n.t("Find a protector");
+      return (
+        order ??
+        (task ? i18n.t("Find a protector for {task}", { task }) : i18n.t("Find a protector"))
+      );
     case "not-worn-long-enough":
       return task
         ? i18n.t("Ask why it came off at {task}", { task })
@@ -79,7 +109,9 @@ export function orderSentence(
     case "reading-missing":
       return i18n.t("Add a reading under the rule’s own settings");
     case "instrument":
-      return i18n.t("Book the calibration");
+      return textOf(facts, "calibrationFailedOn")
+        ? i18n.t("Look at what was measured with it")
+        : i18n.t("Book the calibration");
     case "problem-reported":
       return i18n.t("Talk to the worker about it");
   }
@@ -114,7 +146,7 @@ export function noticedSentence(
     case "over-limit-outside":
       if (levelDb !== null && valueDb !== null)
         return i18n.t("{level} without protection, limit {limit}", {
-          level: formatLevel(levelDb, locale),
+          level: levelWithBasis(i18n, locale, levelDb, facts),
           limit: formatLimit(valueDb, locale),
         });
       return dosePct !== null
@@ -182,8 +214,15 @@ export function noticedSentence(
     }
     case "reading-missing":
       return i18n.t("No reading or level serves this criterion exactly");
-    case "instrument":
-      return i18n.t("Its laboratory calibration runs out");
+    case "instrument": {
+      const runs = numberOf(facts, "runsCount");
+      if (textOf(facts, "calibrationFailedOn") === null)
+        return i18n.t("Its laboratory calibration runs out");
+      return i18n.t(
+        "It failed its laboratory calibration; {runs, plural, =0 {no run} one {# run} other {# runs}} since its last good check",
+        { runs: runs ?? 0 },
+      );
+    }
     case "problem-reported": {
       const text = textOf(facts, "text");
       return text ? i18n.t("“{text}”", { text }) : i18n.t("The worker reported a problem");

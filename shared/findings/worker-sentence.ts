@@ -2,7 +2,7 @@ import type { I18n } from "@lingui/core";
 import { formatWholeLevel } from "../format/level";
 import type { Locale } from "../i18n/index";
 import type { FindingKind } from "../schemas/finding";
-import { type FindingFacts, numberOf, protectorNames, remedyOf, textOf } from "./facts";
+import { type FindingFacts, leftOf, numberOf, remedyOf, remedyWords, textOf } from "./facts";
 
 /** What to do, to the worker, in plain words and whole sentences. No word of the trade, no decimals. */
 export function workerSentence(
@@ -15,10 +15,10 @@ export function workerSentence(
   const task = textOf(facts, "taskName");
   const protector = textOf(facts, "protector");
   const ask = remedy
-    ? i18n.t("Ask your supervisor for {protector}.", {
-        protector: protectorNames(i18n, remedy.names),
-      })
-    : i18n.t("Ask your supervisor what to do before you work in noise again.");
+    ? i18n.t("Ask your supervisor for {protector}.", { protector: remedyWords(i18n, remedy) })
+    : leftOf(facts)?.kind === "wear-throughout"
+      ? i18n.t("Keep your protector on all the time in noise.")
+      : i18n.t("Ask your supervisor what to do before you work in noise again.");
   switch (kind) {
     case "over-limit-outside":
       return i18n.t(

@@ -3,6 +3,7 @@ import {
   formatDate,
   formatDay,
   formatInstant,
+  formatLongDay,
   formatMonth,
   formatShortDate,
   formatTime,
@@ -16,6 +17,8 @@ test("dates in both languages", () => {
   expect(formatDay("2026-12-01", "en")).toBe("Tuesday 1 December");
   expect(formatDay("2026-12-01", "de")).toBe("Dienstag, 1. Dezember");
   expect(formatDate("2026-12-01", "de")).toBe("1. Dezember 2026");
+  expect(formatLongDay("2026-12-01", "en")).toBe("Tuesday 1 December 2026");
+  expect(formatLongDay("2026-12-01", "de")).toBe("Dienstag, 1. Dezember 2026");
   expect(formatShortDate("2026-03-09", "de")).toBe("09.03.2026");
   expect(formatShortDate("2026-09-09", "en")).toBe("9 Sep 2026");
   expect(formatWeekday("2026-12-03", "en")).toBe("Thu 3");

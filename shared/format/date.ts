@@ -58,6 +58,12 @@ export function formatDay(isoDate: string, locale: Locale): string {
   return locale === "de" ? `${weekday}, ${day}. ${month}` : `${weekday} ${day} ${month}`;
 }
 
+/** "Tuesday 1 December 2026", "Dienstag, 1. Dezember 2026": beside a field in which a date of any year is chosen. */
+export function formatLongDay(isoDate: string, locale: Locale): string {
+  const { weekday } = localParts(isoDate, locale);
+  return `${weekday}${locale === "de" ? "," : ""} ${formatDate(isoDate, locale)}`;
+}
+
 /** "1 Dec 2026", "01.12.2026": for columns. */
 export function formatShortDate(isoDate: string, locale: Locale): string {
   const { day, month, year } = localParts(isoDate, locale, locale === "de" ? "2-digit" : "short");

@@ -18,9 +18,22 @@ export const AuditEventView = z.object({
   action: z.string(),
   subjectKind: z.string(),
   subjectId: z.uuid().nullable(),
+  /** Of the site that the event concerns; null where it concerns none. */
+  timeZone: z.string().nullable(),
   /** Null once the personal values have been erased; the event itself stays. */
   values: z.record(z.string(), z.unknown()).nullable(),
   isSealed: z.boolean(),
 });
 export type AuditEventView = z.infer<typeof AuditEventView>;
-export const AuditEventPage = pageOf(AuditEventView);
+/** What an id in the trail stands for. Only what the reader may see is named. */
+export const NamedThing = z.object({
+  id: z.uuid(),
+  kind: z.string(),
+  /** Its own name, or that of the worker or thing that it is about. */
+  name: z.string().nullable(),
+  date: z.iso.date().nullable(),
+  /** Kind of a finding. */
+  code: z.string().nullable(),
+});
+export type NamedThing = z.infer<typeof NamedThing>;
+export const AuditEventPage = pageOf(AuditEventView).extend({ names: z.array(NamedThing) });

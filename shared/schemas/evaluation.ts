@@ -151,6 +151,7 @@ export const ReadingFacts = z.object({
   lasMaxDb: z.number().min(20).max(180).nullable().default(null),
   peak: Peak.nullable().default(null),
 });
+export type ReadingFacts = z.infer<typeof ReadingFacts>;
 
 const Reading = z.object({
   id: z.string(),

@@ -71,6 +71,8 @@ export const FindingRow = z.object({
   lastDate: IsoDate,
   daysCount: z.number(),
   dueOn: IsoDate.nullable(),
+  /** It rests on rules that no longer govern its site: the day from which others do. Null while they still do. */
+  rulesUntil: IsoDate.nullable(),
   siteId: z.uuid(),
   worker: z.object({ id: z.uuid(), name: z.string(), employeeNumber: z.string() }).nullable(),
   /** The group, the instrument or the crew it concerns, in words. */
@@ -93,7 +95,7 @@ export const FindingFilter = PageQuery.extend({
 
 export const FindingStep = z.object({
   id: z.uuid(),
-  kind: z.enum(["state", "comment", "marked-done", "cannot", "evidence-gone"]),
+  kind: z.enum(["state", "comment", "marked-done", "cannot", "evidence-gone", "rules-changed"]),
   fromState: FindingState.nullable(),
   toState: FindingState.nullable(),
   text: z.string().nullable(),

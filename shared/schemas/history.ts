@@ -120,12 +120,27 @@ export const HistoryImportState = z.enum([
   "cancelled",
   "failed",
 ]);
-export const HistoryImportForm = z.object({
-  instrumentId: z.uuid(),
-  /** The run it belongs to; null: a new one for `workerId`. */
-  runId: z.uuid().nullable().default(null),
-  workerId: z.uuid().nullable().default(null),
-});
+/** Largest file of a history that is taken in, bytes. */
+export const HISTORY_LIMIT_BYTES = 400 * 1024 * 1024;
+
+/** A form's empty field is no id. */
+const IdOrNone = z.union([z.literal("").transform(() => null), z.uuid(), z.null()]).default(null);
+export const HistoryImportForm = z
+  .object({
+    instrumentId: z.uuid(),
+    /** The run it belongs to; null: a new one for `workerId`. */
+    runId: IdOrNone,
+    workerId: IdOrNone,
+    file: z.object({
+      name: z.string().min(1).max(255),
+      sizeBytes: z.number(),
+      sha256: z.string(),
+    }),
+  })
+  .refine(({ runId, workerId }) => runId !== null || workerId !== null, {
+    path: ["workerId"],
+    params: { code: "run-or-worker-needed" },
+  });
 export const HistoryImportView = z.object({
   id: z.uuid(),
   siteId: z.uuid(),
@@ -142,6 +157,10 @@ export const HistoryImportView = z.object({
   head: HistoryHead.nullable(),
   mapping: HistoryMapping.nullable(),
   report: HistoryReport.nullable(),
+  /** Codes of what was asked and is accepted. */
+  answers: z.array(z.string()),
+  /** The site's zone, in which the file's clock is read. */
+  timeZone: z.string(),
   historyId: z.uuid().nullable(),
   authorName: z.string().nullable(),
   createdAt: z.string(),
@@ -156,10 +175,12 @@ export const HistoryReadOrder = z.object({
   mapping: HistoryMapping,
   answers: z.array(z.string().max(60)).max(20).default([]),
 });
+export type HistoryReadOrder = z.infer<typeof HistoryReadOrder>;
 export const HistoryStoreOrder = z.object({
   covers: z.enum(["shift", "projected", "part"]),
   keptReason: Reason.nullable().default(null),
 });
+export type HistoryStoreOrder = z.infer<typeof HistoryStoreOrder>;
 
 /** A stretch of a history, seconds from its start: a task's bracket, or left out for a reason. */
 export const HistoryStretch = z
@@ -247,6 +268,10 @@ const Evaluated = z.object({
   peak: ReadingFacts.shape.peak,
   percentilesDb: z.record(z.string(), z.number()),
 });
+const LevelFigure = z.object({
+  levelDb: z.number(),
+  bound: z.enum(["exact", "upper", "lower"]),
+});
 /** What a history comes to: with the stretches left out, and with everything counted. */
 export const HistoryAnalysis = z.object({
   counted: Evaluated,
@@ -267,8 +292,20 @@ export const HistoryAnalysis = z.object({
   runningDose: z.array(
     z.object({
       label: z.string(),
+      settings: ReadingFacts.shape.settings,
       bound: z.enum(["exact", "upper", "lower"]),
       bucketS: z.number(),
+      dosePct: z.array(z.number()),
+    }),
+  ),
+  /** The picture as a table: each quarter of an hour of the clock, the first and the last shorter. */
+  quarters: z.array(
+    z.object({
+      fromS: z.number(),
+      toS: z.number(),
+      laeq: LevelFigure.nullable(),
+      slowMax: LevelFigure.nullable(),
+      /** Dose so far at the end, percent, in the order of `runningDose`. */
       dosePct: z.array(z.number()),
     }),
   ),

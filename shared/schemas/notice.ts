@@ -46,4 +46,3 @@ export const NoticeText = z.object({
   html: z.string(),
   isSent: z.boolean(),
 });
-export const NoticeList = z.object({ rows: z.array(NoticeRow) });

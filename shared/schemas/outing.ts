@@ -17,7 +17,12 @@ export const OutingStart = z.object({
 });
 export type OutingStart = z.infer<typeof OutingStart>;
 
+/** A run that was started by mistake is taken back with a reason. */
+export const OutingUndo = z.object({ reason: Reason });
+export type OutingUndo = z.infer<typeof OutingUndo>;
+
 export const OutingReturn = z.object({
+  /** ISO instant until which it was worn. */
   backAt: z.iso.datetime({ offset: true }),
   checkAfterDb: z.number().min(70).max(130).nullable().default(null),
   covers: z.enum(["shift", "projected", "part"]),
@@ -26,7 +31,10 @@ export const OutingReturn = z.object({
     .array(z.enum(["clipped", "under-range"]))
     .max(2)
     .default([]),
+  /** Why the run is kept for results in spite of what speaks against it. */
   keptReason: Reason.nullable().default(null),
+  /** Why the run is discarded: it stays on record, struck. */
+  discardReason: Reason.nullable().default(null),
   unusual: z.string().trim().max(10_000).nullable().default(null),
 });
 export type OutingReturn = z.infer<typeof OutingReturn>;
@@ -60,6 +68,10 @@ export const OutingRow = z.object({
       checkBeforeDb: z.number().nullable(),
       checkAfterDb: z.number().nullable(),
       readingsCount: z.number(),
+      isVoid: z.boolean(),
+      doubts: z.array(z.string()),
+      keptReason: z.string().nullable(),
+      authorName: z.string().nullable(),
       historyId: z.uuid().nullable(),
     })
     .nullable(),
@@ -73,7 +85,29 @@ export const OutingBoard = z.object({
   can: Can("change"),
 });
 export type OutingBoard = z.infer<typeof OutingBoard>;
-export const OutingQuery = z.object({ siteId: z.uuid(), date: IsoDate.optional() });
+export const OutingQuery = z.object({ date: IsoDate.optional() });
+
+/** A worker's shift has been over for this long when an instrument comes back: was it worn until then? No source. */
+export const LATE_RETURN_MIN = 30;
+export const isLateReturn = (backAt: string, expectedBackAt: string | null): boolean =>
+  expectedBackAt !== null &&
+  Date.parse(backAt) - Date.parse(expectedBackAt) > LATE_RETURN_MIN * 60_000;
+
+/** Under what a sound level meter's LAeq stands among the readings: energy, no threshold, no time weighting. */
+export const LAEQ_SETTINGS = {
+  criterionLevelDb: 85,
+  exchangeRateDb: 3,
+  thresholdDb: null,
+  weighting: "A",
+  response: "none",
+} as const;
+
+export const FILE_LIMIT_BYTES = 20 * 1024 ** 2;
+export const FILE_KINDS = ["image/png", "image/jpeg", "image/webp", "application/pdf"] as const;
+/** What a form with a file becomes before it is parsed. */
+export const FileForm = z.object({
+  file: z.object({ name: z.string().min(1).max(500), sizeBytes: z.number(), sha256: z.string() }),
+});
 
 /** A sample taken by hand, at a task. */
 export const SampleInput = z.object({
@@ -128,10 +162,14 @@ export const CalibrationView = z.object({
   authorName: z.string().nullable(),
   createdAt: z.string(),
 });
+export type CalibrationView = z.infer<typeof CalibrationView>;
 /** An instrument's calibrations, and what hangs on it since its last good check. */
 export const CalibrationHistory = z.object({
   rows: z.array(CalibrationView),
+  /** ISO instant before which nothing speaks against it; null where no check of it is on record. */
   lastGoodCheckAt: z.string().nullable(),
+  /** What was good: the laboratory, or a run's field checks. */
+  lastGoodCheck: z.enum(["calibration", "field-check"]).nullable(),
   /** Filled where the latest calibration failed. */
   inDoubt: z.array(
     z.object({
@@ -140,6 +178,8 @@ export const CalibrationHistory = z.object({
       workerId: z.uuid().nullable(),
       workerName: z.string().nullable(),
       taskName: z.string().nullable(),
+      isVoid: z.boolean(),
+      keptReason: z.string().nullable(),
       /** Days whose current result rests on the run. */
       resultsCount: z.number(),
     }),

@@ -44,6 +44,7 @@ export const PROBLEM_CODES = [
   "instruments-overlap",
   "same-file",
   "wrong-state",
+  "already-out",
   "draining",
 ] as const;
 export type ProblemCode = (typeof PROBLEM_CODES)[number];

@@ -1,6 +1,7 @@
 import { z } from "zod";
 import { Can, IsoDate, Name, PageQuery, pageOf, Reason } from "./common";
-import { ReadingFacts, Settings } from "./evaluation";
+import { OctaveBands, ReadingFacts, Settings } from "./evaluation";
+import { findRunDoubts, RUN_DOUBTS } from "./run-doubts";
 
 export const InstrumentInput = z.object({
   siteId: z.uuid(),
@@ -21,19 +22,26 @@ export const InstrumentView = InstrumentInput.extend({
 export type InstrumentView = z.infer<typeof InstrumentView>;
 export const InstrumentList = z.object({ rows: z.array(InstrumentView) });
 
-/** Field checks may drift by this much (ISO 9612) before a run is discarded or kept with a reason. */
-export const FIELD_CHECK_TOLERANCE_DB = 0.5;
-
 const Facts = z.object({
   durationMin: z.number().positive().max(1440),
   checkBeforeDb: z.number().min(70).max(130).nullable().default(null),
   checkAfterDb: z.number().min(70).max(130).nullable().default(null),
   covers: z.enum(["shift", "projected", "part"]),
-  /** Why the officer keeps a run whose field checks drifted too far. */
+  /** Why the officer keeps a run against which something speaks (shared/schemas/run-doubts.ts). */
   keptReason: Reason.nullable().default(null),
   unusual: z.string().trim().max(10_000).nullable().default(null),
   readings: z.array(ReadingFacts).min(1).max(12),
 });
+
+/** Settings under which nothing was read. */
+export const isEmptyReading = ({
+  dosePct,
+  averageDb,
+  lceqDb,
+  lasMaxDb,
+  peak,
+}: z.infer<typeof ReadingFacts>): boolean =>
+  [dosePct, averageDb, lceqDb, lasMaxDb, peak].every((value) => value === null);
 
 type Issues = { value: z.infer<typeof Facts>; issues: unknown[] };
 function plausible(context: Issues): void {
@@ -49,15 +57,20 @@ function plausible(context: Issues): void {
       path,
       params: { code, ...params },
     });
-  if (checkBeforeDb !== null && checkAfterDb !== null) {
-    const driftDb = Math.abs(checkAfterDb - checkBeforeDb);
-    if (driftDb > FIELD_CHECK_TOLERANCE_DB + 1e-9 && keptReason === null)
-      add(["keptReason"], "field-check-drift", { driftDb });
-  }
+  // What needs the instrument's certificate or the survey's plan is the server's to ask about.
+  const doubts = findRunDoubts({
+    checkBeforeDb,
+    checkAfterDb,
+    date: "",
+    calibration: { dueOn: null, failedOn: null },
+    durationMin: null,
+    leastMin: null,
+    shown: [],
+  });
+  if (keptReason === null)
+    for (const { code, params } of doubts) add(["keptReason"], code, { ...params });
   readings.forEach((reading, index) => {
-    const { dosePct, averageDb, lceqDb, lasMaxDb, peak } = reading;
-    if ([dosePct, averageDb, lceqDb, lasMaxDb, peak].every((value) => value === null))
-      add(["readings", index, "averageDb"], "reading-empty");
+    if (isEmptyReading(reading)) add(["readings", index, "averageDb"], "reading-empty");
   });
 }
 
@@ -70,12 +83,21 @@ export const RunInput = Facts.extend({
 export type RunInput = z.infer<typeof RunInput>;
 
 export const RunCorrection = Facts.extend({
+  /** None, where all that it logged is its time history. */
+  readings: z.array(ReadingFacts).max(12),
   reason: Reason,
   isVoid: z.boolean().default(false),
 }).check((context) => plausible(context as unknown as Issues));
 export type RunCorrection = z.infer<typeof RunCorrection>;
 
-export const RunView = Facts.extend({
+/** A reading as it is stored: an octave spectrum beside it where a meter gave one, and what it was read off. */
+export const StoredReading = ReadingFacts.extend({
+  octaveBandsDb: OctaveBands.nullable(),
+  source: z.enum(["instrument", "history", "recording"]),
+});
+export type StoredReading = z.infer<typeof StoredReading>;
+
+export const RunView = Facts.omit({ durationMin: true, readings: true }).extend({
   id: z.uuid(),
   siteId: z.uuid(),
   instrumentId: z.uuid(),
@@ -83,8 +105,27 @@ export const RunView = Facts.extend({
   serialNumber: z.string(),
   workerId: z.uuid().nullable(),
   workerName: z.string().nullable(),
+  areaName: z.string().nullable(),
+  taskId: z.uuid().nullable(),
+  taskName: z.string().nullable(),
+  surveyId: z.uuid().nullable(),
+  surveyName: z.string().nullable(),
+  place: z.string().nullable(),
   date: IsoDate,
   shiftId: z.uuid().nullable(),
+  /** Not back yet: no duration, no reading. */
+  isOut: z.boolean(),
+  /** ISO instants; null where a run was typed with its length alone. */
+  outAt: z.string().nullable(),
+  backAt: z.string().nullable(),
+  /** Null while it is out. */
+  durationMin: z.number().nullable(),
+  /** None where it is out, or where all that it logged is its time history. */
+  readings: z.array(StoredReading),
+  /** What speaks against it and was kept all the same. */
+  doubts: z.array(z.enum(RUN_DOUBTS)),
+  historyId: z.uuid().nullable(),
+  files: z.array(z.object({ id: z.uuid(), name: z.string(), mediaType: z.string() })),
   isVoid: z.boolean(),
   revision: z.number(),
   authorName: z.string().nullable(),
@@ -98,4 +139,6 @@ export const RunFilter = PageQuery.extend({
   date: IsoDate.optional(),
   instrumentId: z.uuid().optional(),
   siteId: z.uuid().optional(),
+  surveyId: z.uuid().optional(),
+  taskId: z.uuid().optional(),
 });

@@ -50,14 +50,16 @@ export function checkShiftFacts(context: Shape): void {
   });
 }
 
-/** A reading typed into the day grid: it becomes a run of its own, or the next revision of one. */
-export const GridReading = ReadingFacts.extend({
+/** A run typed into the day grid, one reading for each of its settings rows: a new run, or the next revision of one. */
+export const GridRunInput = z.object({
   instrumentId: z.uuid(),
   runId: z.uuid().nullable().default(null),
   runRevision: z.number().int().nullable().default(null),
   durationMin: z.number().positive().max(1440),
   covers: z.enum(["shift", "projected", "part"]).default("shift"),
+  readings: z.array(ReadingFacts).min(1).max(12),
 });
+export type GridRunInput = z.infer<typeof GridRunInput>;
 
 export const DayRowInput = z.discriminatedUnion("kind", [
   ShiftFacts.extend({
@@ -70,7 +72,7 @@ export const DayRowInput = z.discriminatedUnion("kind", [
     reason: Reason.nullable().default(null),
     /** A shift of exactly 24 hours is asked about once. */
     confirmsWholeDay: z.boolean().default(false),
-    reading: GridReading.nullable().default(null),
+    run: GridRunInput.nullable().default(null),
   }),
   z.object({ kind: z.literal("absent"), workerId: z.uuid() }),
   z.object({ kind: z.literal("not-absent"), workerId: z.uuid() }),

@@ -62,6 +62,16 @@ export const AreaList = z.object({ rows: z.array(AreaView) });
 export const ChangePreview = z.object({
   days: z.number(),
   workers: z.number(),
+  /** Days that become Can't tell yet, on either line: where uncertainty begins to count, these are said first. */
+  cantTellDays: z.number(),
+  /** Days that come to a state, per line, the most first: every day that was looked at is in it. */
+  tally: z.array(
+    z.object({
+      line: z.enum(["without-protection", "at-the-ear", "protector"]),
+      after: z.string(),
+      days: z.number(),
+    }),
+  ),
   changes: z.array(
     z.object({
       workerId: z.uuid(),

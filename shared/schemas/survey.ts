@@ -78,10 +78,26 @@ export const SurveyPlanQuery = z.object({
   strategy: Strategy.optional(),
   seed: z.string().min(1).max(60).optional(),
 });
+
+/** What the shifts of the last months really had of a task: those with it, out of all of the group. */
+export const ObservedDuration = z.object({
+  count: z.number(),
+  meanMin: z.number(),
+  /** Null below two shifts. */
+  sdMin: z.number().nullable(),
+  shiftsCount: z.number(),
+});
+export type ObservedDuration = z.infer<typeof ObservedDuration>;
+/** Codes of what the standard asks for, each with its clause. */
+export const PlanReasons = z.array(
+  z.object({ code: z.string(), clause: z.string(), isRevisedIn2025: z.boolean() }),
+);
 export const SurveyPlan = z.object({
   strategy: Strategy,
-  /** Code of the reason why this strategy is preselected. */
+  /** What is preselected, with the code of its reason and the clause; another may have been asked for. */
+  proposedStrategy: Strategy,
   strategyReason: z.string(),
+  strategyClause: z.string(),
   seed: z.string(),
   groupSize: z.number(),
   targets: z.array(
@@ -89,9 +105,8 @@ export const SurveyPlan = z.object({
       taskName: z.string().nullable(),
       /** Nominal minutes of the task, and what the shifts of the last months really had. */
       nominalMin: z.number().nullable(),
-      observed: z.object({ count: z.number(), meanMin: z.number(), sdMin: z.number() }).nullable(),
-      reason: z.string(),
-      clause: z.string(),
+      observed: ObservedDuration.nullable(),
+      reasons: PlanReasons,
     }),
   ),
   people: z.array(SurveyPerson.extend({ name: z.string(), employeeNumber: z.string() })),
@@ -142,26 +157,35 @@ export const SurveySample = z.object({
   doubts: z.array(z.string()),
   keptReason: z.string().nullable(),
   unusual: z.string().nullable(),
+  /** The target it counts for; null where it counts for none, and then why. */
+  position: z.number().nullable(),
+  notCounted: z.enum(["still-out", "refused", "no-laeq", "of-no-target"]).nullable(),
 });
 export type SurveySample = z.infer<typeof SurveySample>;
 
 /** What the samples of one target come to. */
 export const TargetResult = z.object({
+  position: z.number(),
   taskId: z.uuid().nullable(),
   taskName: z.string().nullable(),
   samplesCount: z.number(),
   wantedCount: z.number(),
   levelDb: z.number().nullable(),
   rangeDb: z.number().nullable(),
-  /** Code of what the standard asks for next, as more samples; null: enough. */
-  asksFor: z.string().nullable(),
+  /** Samples still to take. */
+  missingCount: z.number(),
+  /** Code of what the standard asks for next; null: enough. */
+  asksFor: z.enum(["more-samples", "large-spread", "plan-anew"]).nullable(),
   lcMinusLaDb: z.number().nullable(),
   octaveBandsDb: OctaveBands.nullable(),
   lasMaxDb: z.number().nullable(),
   peakDb: z.number().nullable(),
   peakWeighting: z.enum(["A", "C", "Z"]).nullable(),
+  /** The worst that was used. */
+  instrument: InstrumentClassName.nullable(),
   keptReasons: z.array(z.string()),
 });
+export type TargetResult = z.infer<typeof TargetResult>;
 
 export const SurveyView = SurveyFacts.extend({
   id: z.uuid(),
@@ -183,10 +207,22 @@ export const SurveyDetail = SurveyView.extend({
     z.string(),
     z.object({ name: z.string(), serialNumber: z.string(), calibrationDueOn: IsoDate.nullable() }),
   ),
+  /** Tasks of the group's nominal day, for a result that stands for one of them. */
+  nominalDay: z.array(
+    z.object({ taskId: z.uuid(), taskName: z.string(), durationMin: z.number() }),
+  ),
   samples: z.array(SurveySample),
   results: z.array(TargetResult),
   /** Levels that rest on this survey already. */
-  adopted: z.array(z.object({ taskId: z.uuid(), levelDb: LevelDb, effectiveFrom: IsoDate })),
+  adopted: z.array(
+    z.object({
+      taskId: z.uuid(),
+      taskName: z.string(),
+      levelDb: LevelDb,
+      effectiveFrom: IsoDate,
+      isInForce: z.boolean(),
+    }),
+  ),
 });
 export type SurveyDetail = z.infer<typeof SurveyDetail>;
 export const SurveyRow = SurveyView.pick({
@@ -251,4 +287,22 @@ export const MeasuringNeed = z.object({
   surveyId: z.uuid().nullable(),
 });
 export type MeasuringNeed = z.infer<typeof MeasuringNeed>;
-export const MeasuringNeeds = z.object({ rows: z.array(MeasuringNeed), groupsCount: z.number() });
+export const MeasuringNeeds = z.object({
+  rows: z.array(MeasuringNeed),
+  groupsCount: z.number(),
+  sites: z.array(
+    z.object({
+      id: z.uuid(),
+      name: z.string(),
+      remeasureAfterMonths: z.number().nullable(),
+      revision: z.number(),
+      can: Can("changeRules"),
+    }),
+  ),
+});
+export type MeasuringNeeds = z.infer<typeof MeasuringNeeds>;
+/** After how many months a level counts as measured too long ago; null: the site states none. */
+export const RemeasureInput = z.object({
+  remeasureAfterMonths: z.number().int().min(1).max(240).nullable(),
+});
+export type RemeasureInput = z.infer<typeof RemeasureInput>;

@@ -13,6 +13,23 @@ export type TaskLevelInput = z.infer<typeof TaskLevelInput>;
 export const TaskLevelView = TaskLevelInput.extend({
   id: z.uuid(),
   number: z.number(),
+  /** The survey that it rests on, with each sample's own run. */
+  surveyId: z.uuid().nullable(),
+  surveyName: z.string().nullable(),
+  /** The recording that it, or its spectrum, comes from. */
+  recordingId: z.uuid().nullable(),
+  recordingName: z.string().nullable(),
+  strategy: z.enum(["task", "job", "full-day"]),
+  keptReasons: z.array(z.string()),
+  samples: z.array(
+    z.object({
+      runId: z.uuid(),
+      date: IsoDate,
+      levelDb: z.number(),
+      fromS: z.number().nullable(),
+      toS: z.number().nullable(),
+    }),
+  ),
   authorName: z.string().nullable(),
   createdAt: z.string(),
 });

@@ -1,5 +1,5 @@
 import { z } from "zod";
-import { IsoDate } from "./common";
+import { IsoDate, Language } from "./common";
 import { FindingRow } from "./finding";
 import { EntryNotices, NoticeRow } from "./notice";
 
@@ -41,6 +41,15 @@ export const CrewDays = z.object({
 
 export const WaitingView = z.object({
   today: IsoDate,
+  /** What governs each site in view today; a site that has chosen nothing yet is left out. */
+  ruleSets: z.array(
+    z.object({
+      siteId: z.uuid(),
+      siteName: z.string(),
+      ruleSetKey: z.string(),
+      ruleSetVersion: z.number(),
+    }),
+  ),
   crews: z.array(CrewProgress),
   findings: z.array(FindingRow),
   next: z.string().nullable(),
@@ -68,6 +77,8 @@ export const YearQuery = z.object({
 export const YearFileQuery = YearQuery.extend({
   workers: z.enum(["number", "name"]).default("number"),
 });
+/** Without a language: the reader's own. */
+export const YearDictionaryQuery = z.object({ language: Language.optional() });
 export const GapsView = z.object({
   counts: z.array(z.object({ kind: GapKind, count: z.number() })),
   months: z.array(

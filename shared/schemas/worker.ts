@@ -169,6 +169,13 @@ export const HistoryPage = pageOf(
     limit: z.object({ levelDb: z.number(), isAtEar: z.boolean() }).nullable(),
     /** Kinds of the governing criteria that the day is over. */
     kindsOver: z.array(z.enum(["limit", "action", "ceiling", "peak", "dual-protection"])),
+    /** To the worker, of the latest day: each assignment that was worn, with its word in its own use. */
+    wordsByUse: z.array(
+      z.object({
+        assignmentId: z.uuid(),
+        word: DayFigures.shape.word,
+      }),
+    ),
   }),
 );
 export const SignInCodeView = z.object({ code: z.string(), expiresAt: z.string() });

@@ -43,15 +43,6 @@ export function localTime(instant: Date, timeZone: string): string {
   return local.toISOString().slice(11, 16);
 }
 
-export function isTimeZone(timeZone: string): boolean {
-  try {
-    new Intl.DateTimeFormat("en", { timeZone });
-    return true;
-  } catch {
-    return false;
-  }
-}
-
 /** An ISO date some days later or earlier. */
 export function addDays(date: string, days: number): string {
   return new Date(Date.parse(`${date}T00:00:00Z`) + days * 86_400_000).toISOString().slice(0, 10);

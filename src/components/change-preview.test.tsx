@@ -35,6 +35,11 @@ test("says how many days become what, and gives each worker one row for the same
     days: 40,
     workers: 2,
     changedDays: 3,
+    cantTellDays: 2,
+    tally: [
+      { line: "at-the-ear", after: "cant-tell-yet", days: 2 },
+      { line: "protector", after: "too-much", days: 1 },
+    ],
     tooMany: 0,
     changes: [
       { workerId: ada, workerName: "A. Holm", date: "2026-03-04", ...atEar },
@@ -49,8 +54,8 @@ test("says how many days become what, and gives each worker one row for the same
       },
     ],
   });
-  expect(screen.getByRole("heading", { name: "3 days change verdict" })).toHaveFocus();
-  expect(screen.getByText("2 days become Can’t tell yet")).toBeVisible();
+  expect(screen.getByRole("heading", { name: "2 days become Can’t tell yet" })).toHaveFocus();
+  expect(screen.getByText("3 days change verdict.")).toBeVisible();
   expect(screen.getByText("1 day becomes Too much")).toBeVisible();
   const [, first, second] = screen.getAllByRole("row");
   expect(within(first!).getByRole("link", { name: "A. Holm" })).toHaveAttribute(
@@ -63,20 +68,47 @@ test("says how many days become what, and gives each worker one row for the same
   expect(onSave).toHaveBeenCalledOnce();
 });
 
-test("where the list is cut off, the counts are lower bounds", () => {
+test("counts every day, however few changes are listed", () => {
+  show({
+    days: 400,
+    workers: 9,
+    changedDays: 212,
+    cantTellDays: 212,
+    tally: [{ line: "at-the-ear", after: "cant-tell-yet", days: 212 }],
+    tooMany: 0,
+    changes: [{ workerId: ada, workerName: "A. Holm", date: "2026-03-04", ...atEar }],
+  });
+  expect(screen.getByRole("heading", { name: "212 days become Can’t tell yet" })).toHaveFocus();
+  expect(screen.getByText(/The latest 1 of these changes are listed/)).toBeVisible();
+});
+
+test("where days were not looked at, the counts are lower bounds", () => {
   show({
     days: 5000,
     workers: 30,
     changedDays: 900,
+    cantTellDays: 1,
+    tally: [{ line: "at-the-ear", after: "cant-tell-yet", days: 1 }],
     tooMany: 120,
     changes: [{ workerId: ada, workerName: "A. Holm", date: "2026-03-04", ...atEar }],
   });
+  expect(
+    screen.getByRole("heading", { name: "At least 1 day becomes Can’t tell yet" }),
+  ).toHaveFocus();
   expect(screen.getByText("at least 1 day becomes Can’t tell yet")).toBeVisible();
   expect(screen.getByText(/120 earlier days were not looked at here/)).toBeVisible();
 });
 
 test("nobody changes verdict: the change can still be saved", () => {
-  show({ days: 12, workers: 3, changedDays: 0, tooMany: 0, changes: [] });
+  show({
+    days: 12,
+    workers: 3,
+    changedDays: 0,
+    cantTellDays: 0,
+    tally: [],
+    tooMany: 0,
+    changes: [],
+  });
   expect(screen.getByRole("heading", { name: "Nobody changes verdict" })).toBeVisible();
   expect(screen.queryByRole("table")).toBeNull();
   expect(screen.getByRole("button", { name: "Save and compute anew" })).toBeVisible();

@@ -55,23 +55,6 @@ function lineWord(i18n: I18n, line: Change["line"]): string {
   }
 }
 
-interface Tally {
-  readonly line: Change["line"];
-  readonly after: string;
-  count: number;
-}
-
-/** "At the ear: 212 days become Can’t tell yet", the most frequent first. */
-function tally(changes: readonly Change[]): Tally[] {
-  const counts = new Map<string, Tally>();
-  for (const { line, after } of changes) {
-    const found = counts.get(`${line} ${after}`);
-    if (found) found.count += 1;
-    else counts.set(`${line} ${after}`, { line, after, count: 1 });
-  }
-  return [...counts.values()].sort((a, b) => b.count - a.count);
-}
-
 interface WorkerChange extends Omit<Change, "date"> {
   days: number;
   firstDate: string;
@@ -129,10 +112,28 @@ export function ChangeReview({
   const locale = useLocale();
   const head = useRef<HTMLHeadingElement>(null);
   useEffect(() => head.current?.focus(), []);
-  const { days, workers, changes, changedDays, tooMany } = preview;
+  const { days, workers, changes, changedDays, cantTellDays, tally, tooMany } = preview;
   const isWhole =
     new Set(changes.map(({ workerId, date }) => `${workerId} ${date}`)).size >= changedDays;
   const many = (count: number) => formatNumber(count, 0, locale);
+  const changing =
+    changedDays === 0
+      ? i18n.t("Nobody changes verdict")
+      : i18n.t("{days, plural, one {# day changes verdict} other {{figure} days change verdict}}", {
+          days: changedDays,
+          figure: many(changedDays),
+        });
+  // A verdict that is lost comes before those that change sides.
+  const undecided =
+    tooMany === 0
+      ? i18n.t("{days, plural, one {# day becomes} other {{figure} days become}} Can’t tell yet", {
+          days: cantTellDays,
+          figure: many(cantTellDays),
+        })
+      : i18n.t(
+          "At least {days, plural, one {# day becomes} other {{figure} days become}} Can’t tell yet",
+          { days: cantTellDays, figure: many(cantTellDays) },
+        );
   const actions = (
     <>
       <FormProblem error={error} />
@@ -147,16 +148,9 @@ export function ChangeReview({
   return (
     <section className="section review" aria-labelledby="review-head">
       <h2 id="review-head" ref={head} tabIndex={-1}>
-        {changedDays === 0
-          ? i18n.t("Nobody changes verdict")
-          : i18n.t(
-              "{days, plural, one {# day changes verdict} other {{figure} days change verdict}}",
-              {
-                days: changedDays,
-                figure: many(changedDays),
-              },
-            )}
+        {cantTellDays > 0 ? undecided : changing}
       </h2>
+      {cantTellDays > 0 && <p className="review-lead">{changing}.</p>}
       <p className="review-lead">
         {what}{" "}
         {i18n.t(
@@ -169,11 +163,11 @@ export function ChangeReview({
       {changes.length > 0 && (
         <>
           <ul className="review-tally">
-            {tally(changes).map(({ line, after, count }) => (
+            {tally.map(({ line, after, days: count }) => (
               <li key={`${line} ${after}`}>
                 <span>{lineWord(i18n, line)}</span>
                 <b>
-                  {isWhole
+                  {tooMany === 0
                     ? i18n.t("{count, plural, one {# day becomes} other {# days become}} {word}", {
                         count,
                         word: stateWord(i18n, after),

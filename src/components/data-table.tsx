@@ -62,6 +62,8 @@ export interface DataTableProps<Row> {
   /** Server paging by cursor. */
   readonly more?: { hasMore: boolean; isLoading: boolean; onMore: () => void };
   readonly isTwoLine?: boolean;
+  /** On a phone each row is a block, every cell under its column's head, where that is a text. */
+  readonly stacksOnPhone?: boolean;
   readonly isSelected?: (row: Row) => boolean;
   readonly foot?: ReactNode;
 }
@@ -110,6 +112,7 @@ export function DataTable<Row extends RowData>({
   onSort,
   more,
   isTwoLine = false,
+  stacksOnPhone = false,
   isSelected,
   foot,
 }: DataTableProps<Row>) {
@@ -172,7 +175,7 @@ export function DataTable<Row extends RowData>({
         {...(isScrolled ? { role: "region", "aria-label": caption, tabIndex: 0 } : {})}
       >
         <table
-          className={`data-table${isTwoLine ? " is-two-line" : ""}`}
+          className={`data-table${isTwoLine ? " is-two-line" : ""}${stacksOnPhone ? " stacks-on-phone" : ""}`}
           aria-busy={state === "loading"}
         >
           <caption className="sr-only">{caption}</caption>
@@ -255,7 +258,12 @@ export function DataTable<Row extends RowData>({
                             <table.FlexRender cell={cell} />
                           </th>
                         ) : (
-                          <td key={cell.id} data-column={column.id} className={cellClass(column)}>
+                          <td
+                            key={cell.id}
+                            data-column={column.id}
+                            data-head={typeof column.head === "string" ? column.head : undefined}
+                            className={cellClass(column)}
+                          >
                             <table.FlexRender cell={cell} />
                           </td>
                         );

@@ -1,7 +1,13 @@
 import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { useMemo } from "react";
-import type { RuleSetVersion, Verdict as VerdictCode } from "../../shared/acoustics/types";
+import { outsideCriterion } from "../../shared/acoustics/outside-criterion";
+import type {
+  Criterion,
+  RuleSetVersion,
+  Verdict as VerdictCode,
+} from "../../shared/acoustics/types";
+import { criterionValue, levelBasis } from "../../shared/findings/basis";
 import { asReason, reasonText } from "../../shared/findings/reasons";
 import { formatLevel, formatLimit } from "../../shared/format/level";
 import { withinSentence } from "../../shared/format/words";
@@ -132,6 +138,7 @@ interface Judged {
   readonly verdict: VerdictCode;
   readonly isClear: boolean;
   readonly levelDb: number;
+  readonly criterion: Criterion;
 }
 
 const LEVEL_QUANTITIES: ReadonlySet<string> = new Set(["lex-8h", "dose", "table-dose"]);
@@ -148,7 +155,7 @@ function judgedOutside(figures: DayFigures, ruleSet: RuleSetVersion): Judged[] {
     const says = (verdict: VerdictCode) =>
       ["not-assessed", "under", "cant-tell-yet", "over"].indexOf(verdict);
     if (before && says(before.verdict) >= says(result.verdict)) continue;
-    byValue.set(levelDb, { verdict: result.verdict, isClear: result.isClear, levelDb });
+    byValue.set(levelDb, { verdict: result.verdict, isClear: result.isClear, levelDb, criterion });
   }
   return [...byValue.values()].sort((a, b) => a.levelDb - b.levelDb);
 }
@@ -163,7 +170,7 @@ export function outsideVerdict(
   const judged = ruleSet ? judgedOutside(figures, ruleSet) : [];
   const over = judged.findLast(({ verdict }) => verdict === "over");
   const open = judged.find(({ verdict }) => verdict === "cant-tell-yet");
-  const show = ({ levelDb }: Judged) => formatLimit(levelDb, locale);
+  const show = ({ criterion }: Judged) => criterionValue(locale, criterion);
   if (over && open && open.levelDb > over.levelDb)
     return {
       verdict: "cant-tell-yet",
@@ -220,6 +227,8 @@ export function OutsideFigure({ figures }: { figures: DayFigures }) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const { verdict, words } = outsideVerdict(i18n, locale, figures);
+  const ruleSet = ruleSetVersion(figures.ruleSetKey, figures.ruleSetVersion);
+  const basis = ruleSet && levelBasis(i18n, locale, outsideCriterion(ruleSet));
   return (
     <LevelFigure
       levelDb={figures.outsideDb}
@@ -229,6 +238,7 @@ export function OutsideFigure({ figures }: { figures: DayFigures }) {
       <Verdict verdict={verdict} isQuiet>
         {words}
       </Verdict>
+      {basis && figures.outsideDb !== null && <span className="beneath">{basis}</span>}
     </LevelFigure>
   );
 }

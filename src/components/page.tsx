@@ -1,6 +1,6 @@
 import { useLingui } from "@lingui/react";
-import type { ReactNode } from "react";
-import { Link, NavLink } from "react-router-dom";
+import { type ReactNode, useLayoutEffect, useRef, useState } from "react";
+import { Link, NavLink, useLocation } from "react-router-dom";
 
 export interface NavItem {
   readonly to: string;
@@ -52,26 +52,71 @@ export function RunningHead({
   title?: string;
   account?: ReactNode;
 }) {
-  const { i18n } = useLingui();
   return (
     <header className="running-head">
       <Link className="brand" to={homeTo}>
         <Mark />
         {title}
       </Link>
-      {items.length > 0 && (
-        <nav className="running-nav" aria-label={i18n.t("Pages")}>
-          <ul>
-            {items.map((item) => (
-              <li key={item.to}>
-                <NavLink to={item.to}>{item.label}</NavLink>
-              </li>
-            ))}
-          </ul>
-        </nav>
-      )}
+      {items.length > 0 && <RunningNav items={items} />}
       {account && <div className="running-account">{account}</div>}
     </header>
+  );
+}
+
+/** A line of words; on a phone, at the foot, those that have room, and the others behind "More". */
+function RunningNav({ items }: { items: readonly NavItem[] }) {
+  const { i18n } = useLingui();
+  const { pathname } = useLocation();
+  const list = useRef<HTMLUListElement>(null);
+  const [hides, setHides] = useState<"nothing" | "words" | "current">("nothing");
+  const [openAt, setOpenAt] = useState<string | null>(null);
+  // Where the next page opens, the words are together again.
+  const isOpen = openAt === pathname;
+  // biome-ignore lint/correctness/useExhaustiveDependencies: another page or language is other words
+  useLayoutEffect(() => {
+    const words = list.current;
+    if (!words || isOpen || typeof ResizeObserver === "undefined") return;
+    const measure = () => {
+      const end = words.clientHeight;
+      const current = words.querySelector<HTMLElement>("[aria-current=page]");
+      const isBelow = (element: HTMLElement | null | undefined) =>
+        element != null && element.offsetTop - words.offsetTop >= end;
+      words.scrollTop = 0;
+      setHides(
+        isBelow(current)
+          ? "current"
+          : isBelow(words.querySelector<HTMLElement>("li:last-child > a"))
+            ? "words"
+            : "nothing",
+      );
+    };
+    measure();
+    const observer = new ResizeObserver(measure);
+    observer.observe(words);
+    return () => observer.disconnect();
+  }, [isOpen, pathname, items.length, i18n.locale]);
+  return (
+    <nav
+      className={`running-nav${isOpen ? " is-open" : ""}${hides === "nothing" ? "" : " has-more"}`}
+      aria-label={i18n.t("Pages")}
+    >
+      <ul ref={list}>
+        {items.map((item) => (
+          <li key={item.to}>
+            <NavLink to={item.to}>{item.label}</NavLink>
+          </li>
+        ))}
+      </ul>
+      <button
+        type="button"
+        className={`running-more${hides === "current" && !isOpen ? " is-current" : ""}`}
+        aria-expanded={isOpen}
+        onClick={() => setOpenAt(isOpen ? null : pathname)}
+      >
+        {isOpen ? i18n.t("Fewer") : i18n.t("More")}
+      </button>
+    </nav>
   );
 }
 

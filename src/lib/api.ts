@@ -116,31 +116,41 @@ function readIssues(value: unknown): Issue[] {
   }));
 }
 
-async function readProblem(response: Response): Promise<ApiError> {
-  const body: unknown = await response.json().catch(() => null);
+export function toProblem(status: number, statusText: string, body: unknown): ApiError {
   const problem = isRecord(body) ? body : {};
   return new ApiError(
-    response.status,
-    typeof problem.code === "string" ? problem.code : `http-${response.status}`,
+    status,
+    typeof problem.code === "string" ? problem.code : `http-${status}`,
     readParams(problem.params),
     readIssues(problem.issues),
     body,
-    typeof problem.title === "string" ? problem.title : response.statusText,
+    typeof problem.title === "string" ? problem.title : statusText,
   );
 }
 
+export const apiAddress = (path: string): string => `${BASE}${path}`;
+
+/** What every change carries. */
+export function apiHeaders(idempotencyKey: string): Headers {
+  const headers = new Headers({
+    accept: "application/json, application/problem+json",
+    "idempotency-key": idempotencyKey,
+  });
+  const token = csrfToken();
+  if (token !== null) headers.set("x-csrf-token", token);
+  return headers;
+}
+
 async function request<T>(method: string, path: string, options: ChangeOptions<T>): Promise<T> {
-  const headers = new Headers({ accept: "application/json, application/problem+json" });
+  const headers =
+    method === "GET"
+      ? new Headers({ accept: "application/json, application/problem+json" })
+      : apiHeaders(options.idempotencyKey ?? newChangeKey());
   let body: BodyInit | undefined;
   if (options.body instanceof FormData) body = options.body;
   else if (options.body !== undefined) {
     headers.set("content-type", "application/json");
     body = JSON.stringify(options.body);
-  }
-  if (method !== "GET") {
-    headers.set("idempotency-key", options.idempotencyKey ?? newChangeKey());
-    const token = csrfToken();
-    if (token !== null) headers.set("x-csrf-token", token);
   }
   if (options.ifMatch !== undefined) headers.set("if-match", options.ifMatch);
 
@@ -159,7 +169,8 @@ async function request<T>(method: string, path: string, options: ChangeOptions<T
     throw new ApiError(0, "no-connection", {}, [], null, "No connection");
   }
   if (!response.ok) {
-    const problem = await readProblem(response);
+    const body: unknown = await response.json().catch(() => null);
+    const problem = toProblem(response.status, response.statusText, body);
     const isSessionLost = response.status === 401 && options.asksWhoIsThere !== true;
     connectionEvents.tell(isSessionLost ? "session-expired" : "ok");
     throw problem;

@@ -154,6 +154,35 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       );
     case "calibration-out-of-date":
       return i18n.t("The laboratory calibration had run out on that day. Say why the run is kept.");
+    case "field-check-mistyped":
+      return i18n.t(
+        "A field check looks mistyped: no instrument drifts that far. Look at it again, or say why the run is kept.",
+      );
+    case "calibration-failed":
+      return i18n.t(
+        "The instrument had failed its laboratory calibration on that day. Say why the run is kept.",
+      );
+    case "run-too-short":
+      return i18n.t("The run is shorter than was wanted of it. Say why it is kept.");
+    case "clipped":
+    case "under-range":
+      return i18n.t("The instrument was overloaded, or under its range. Say why the run is kept.");
+    case "instrument-not-for-runs":
+      return i18n.t("This instrument takes no runs: it is out of use, or a calibrator.");
+    case "worker-or-place":
+      return i18n.t("A worker, or a place.");
+    case "not-on-that-day":
+      return i18n.t("This lies more than a day away from the run’s date.");
+    case "longer-than-a-day":
+      return i18n.t("A run lasts 24 hours at most. Until when was it really worn?");
+    case "worker-of-other-site":
+      return i18n.t("This worker belongs to another site.");
+    case "survey-of-other-site":
+      return i18n.t("This survey is another site’s.");
+    case "failed-has-no-due-date":
+      return i18n.t("What has failed is not good until any date.");
+    case "file-kind":
+      return i18n.t("Photographs (PNG, JPEG, WebP) and PDF are taken, nothing else.");
     case "reading-empty":
       return i18n.t("This row says nothing yet. Type a figure, or take the row out.");
     case "in-the-future":
@@ -174,6 +203,38 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("This job is another site’s.");
     case "worker-left":
       return i18n.t("This worker has left.");
+    case "ends-before-it-starts":
+      return i18n.t("It ends before it starts.");
+    case "one-of-area-task-job":
+      return i18n.t("Choose what it was made to: one area, one task or one job.");
+    case "instrument-reserved-already":
+      return i18n.t("Another survey has reserved one of these instruments on those days.");
+    case "instrument-of-other-site":
+      return i18n.t("This instrument belongs to another site.");
+    case "worker-twice":
+      return i18n.t("This worker stands here twice.");
+    case "task-needed":
+      return i18n.t("Task by task, each line needs its task.");
+    case "no-task-by-job":
+      return i18n.t("By job or by full days, samples are of the whole and of no one task.");
+    case "strategy-fixed":
+      return i18n.t(
+        "Samples have been taken by this strategy: it stays. Plan another survey instead.",
+      );
+    case "not-of-this-target":
+      return i18n.t("These samples are another task’s.");
+    case "no-samples-yet":
+      return i18n.t("There is no sample that counts yet.");
+    case "beyond-the-history":
+      return i18n.t("This stretch reaches beyond the history.");
+    case "stretches-overlap":
+      return i18n.t("It overlaps another stretch of the same kind.");
+    case "everything-left-out":
+      return i18n.t("Nothing would be left that counts.");
+    case "run-or-worker-needed":
+      return i18n.t("Say whose history it is.");
+    case "run-of-other-instrument":
+      return i18n.t("That run was made with another instrument.");
     default:
       return i18n.t("This needs another look.");
   }

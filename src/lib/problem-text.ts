@@ -73,6 +73,8 @@ function codeText(i18n: I18n, code: string, params: Params): string | null {
       );
     case "instruments-overlap":
       return i18n.t("The instrument was somewhere else at that time. Look at its other runs.");
+    case "already-out":
+      return i18n.t("Somebody has sent it out already. Load the page anew to see with whom.");
     case "same-file":
       return i18n.t("This very file is here already.");
     case "wrong-state":

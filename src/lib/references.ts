@@ -1,62 +1,32 @@
 import { queryOptions } from "@tanstack/react-query";
-import { CrewList } from "../../shared/schemas/crew";
 import { ProtectorList } from "../../shared/schemas/protector";
-import { InstrumentList } from "../../shared/schemas/run";
-import { AreaList, SiteList } from "../../shared/schemas/site";
-import { JobList, TaskList } from "../../shared/schemas/task";
+import { AreaList } from "../../shared/schemas/site";
+import { TaskList } from "../../shared/schemas/task";
 import { WorkerPage } from "../../shared/schemas/worker";
 import type { Choice } from "../components/form";
 import { api } from "./api";
 
-/** Lists that forms of several features choose from. Their own pages keep them under keys of their own. */
-const MINUTES = 60_000;
-const key = (name: string, siteId?: string) => ["references", name, siteId ?? "all"] as const;
-
+/**
+ * Lists of other features that a feature's form chooses from; a page takes that feature's own queries. Kept under the
+ * same keys, so that a list is loaded once and a change of it is seen everywhere.
+ */
 export const references = {
-  sites: () =>
-    queryOptions({
-      queryKey: key("sites"),
-      queryFn: ({ signal }) => api.get("/sites", { schema: SiteList, signal }),
-      staleTime: MINUTES,
-    }),
-  crews: () =>
-    queryOptions({
-      queryKey: key("crews"),
-      queryFn: ({ signal }) => api.get("/crews", { schema: CrewList, signal }),
-      staleTime: MINUTES,
-    }),
-  jobs: (siteId: string) =>
-    queryOptions({
-      queryKey: key("jobs", siteId),
-      queryFn: ({ signal }) => api.get("/jobs", { query: { siteId }, schema: JobList, signal }),
-      staleTime: MINUTES,
-      enabled: siteId !== "",
-    }),
   tasks: (siteId: string) =>
     queryOptions({
-      queryKey: key("tasks", siteId),
+      queryKey: ["tasks", "list", siteId],
       queryFn: ({ signal }) => api.get("/tasks", { query: { siteId }, schema: TaskList, signal }),
-      staleTime: MINUTES,
       enabled: siteId !== "",
     }),
   areas: (siteId: string) =>
     queryOptions({
-      queryKey: key("areas", siteId),
+      queryKey: ["areas", "list", siteId],
       queryFn: ({ signal }) => api.get("/areas", { query: { siteId }, schema: AreaList, signal }),
-      staleTime: MINUTES,
       enabled: siteId !== "",
     }),
   protectors: () =>
     queryOptions({
-      queryKey: key("protectors"),
+      queryKey: ["protectors", "list"],
       queryFn: ({ signal }) => api.get("/protectors", { schema: ProtectorList, signal }),
-      staleTime: MINUTES,
-    }),
-  instruments: () =>
-    queryOptions({
-      queryKey: key("instruments"),
-      queryFn: ({ signal }) => api.get("/instruments", { schema: InstrumentList, signal }),
-      staleTime: MINUTES,
     }),
 };
 

@@ -5,6 +5,7 @@ import type {
   LevelMetric,
   MeterSettings,
   ProtectorKind,
+  SurveyStrategy,
   Zone,
 } from "../../shared/acoustics/types";
 import { formatLimit } from "../../shared/format/level";
@@ -57,6 +58,17 @@ export function gradeWord(i18n: I18n, grade: Grade): string {
       return i18n.t("from the task’s level");
     case "estimate":
       return i18n.t("estimate");
+  }
+}
+
+export function strategyWord(i18n: I18n, strategy: SurveyStrategy): string {
+  switch (strategy) {
+    case "task":
+      return i18n.t("task by task");
+    case "job":
+      return i18n.t("by job");
+    case "full-day":
+      return i18n.t("by full days");
   }
 }
 

@@ -1,17 +1,12 @@
 import { useMutation } from "@tanstack/react-query";
 import { useState } from "react";
-import { ApiError, api, type ReplySchema } from "./api";
+import { api, type ReplySchema } from "./api";
+import { savedMeanwhile } from "./stale";
 
 /** Two people changed the same record: what is being saved, and what was saved in between. */
 export interface Conflict<Body, View> {
   readonly mine: Body;
   readonly saved: View;
-}
-
-function savedMeanwhile<View>(error: unknown, schema: ReplySchema<View>): View | null {
-  if (!(error instanceof ApiError) || error.status !== 412) return null;
-  const { current } = error.body as { current?: unknown };
-  return current === undefined ? null : schema.parse(current);
 }
 
 /** Saves a record as a change of the revision that was seen; a stale one becomes a conflict to be settled. */

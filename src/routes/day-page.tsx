@@ -2,9 +2,10 @@ import { useLingui } from "@lingui/react";
 import { useQuery, useQueryClient } from "@tanstack/react-query";
 import { useMemo } from "react";
 import { useNavigate, useParams } from "react-router-dom";
-import { formatDay, formatWeekday } from "../../shared/format/date";
+import { formatDay, formatWeekday, parseDate } from "../../shared/format/date";
 import type { DayGridView } from "../../shared/schemas/shift";
 import { addDays } from "../../shared/time/zone";
+import { DateInput } from "../components/date-input";
 import { Empty } from "../components/empty";
 import { Failed } from "../components/failed";
 import { TextLink } from "../components/link";
@@ -15,11 +16,13 @@ import { dayEntryQueries } from "../features/day-entry/queries";
 import { useUser } from "../features/session/session";
 import { useLocale } from "../lib/i18n";
 import { paths } from "../paths";
+import { Component as NotFound } from "./not-found";
 import "../styles/day-grid.css";
 
 /** Day entry: one crew, one date. */
 export function Component() {
   const { crewId = "", date = "" } = useParams();
+  if (parseDate(date, "en") !== date) return <NotFound />;
   return <Day key={`${crewId} ${date}`} crewId={crewId} date={date} />;
 }
 
@@ -97,9 +100,6 @@ function Way({ crewId, date, today }: { crewId: string; date: string; today: str
   const { i18n } = useLingui();
   const locale = useLocale();
   const navigate = useNavigate();
-  if (!/^\d{4}-\d{2}-\d{2}$/.test(date)) {
-    return <TextLink to={paths.days}>{i18n.t("Days")}</TextLink>;
-  }
   const before = addDays(date, -1);
   const after = addDays(date, 1);
   return (
@@ -113,16 +113,13 @@ function Way({ crewId, date, today }: { crewId: string; date: string; today: str
           {formatWeekday(after, locale)} ›
         </TextLink>
       )}
-      <label>
+      <label htmlFor="another-day">
         {i18n.t("Another day")}{" "}
-        <input
-          className="input"
-          type="date"
+        <DateInput
+          id="another-day"
           max={today ?? undefined}
-          defaultValue={date}
-          onChange={(event) => {
-            if (event.target.value) void navigate(paths.day(crewId, event.target.value));
-          }}
+          value={date}
+          onChoose={(chosen) => void navigate(paths.day(crewId, chosen))}
         />
       </label>
     </>

@@ -7,6 +7,7 @@ import type { CrewView } from "../../shared/schemas/crew";
 import type { CrewProgress } from "../../shared/schemas/waiting";
 import { addDays } from "../../shared/time/zone";
 import { DataTable } from "../components/data-table";
+import { DateInput } from "../components/date-input";
 import { Empty } from "../components/empty";
 import { TextLink } from "../components/link";
 import { Folio, PageBody, PageHead, Section } from "../components/page";
@@ -131,15 +132,12 @@ export function Component() {
         <Section title={i18n.t("Last days of {crew}", { crew: chosen.name })} id="last-days">
           <LastDays crewId={chosen.id} today={today} />
           <p className="table-foot">
-            <label>
+            <label htmlFor="another-day">
               {i18n.t("Another day")}{" "}
-              <input
-                className="input is-date"
-                type="date"
+              <DateInput
+                id="another-day"
                 max={today}
-                onChange={(event) => {
-                  if (event.target.value) void navigate(paths.day(chosen.id, event.target.value));
-                }}
+                onChoose={(date) => void navigate(paths.day(chosen.id, date))}
               />
             </label>
           </p>

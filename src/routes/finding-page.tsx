@@ -2,12 +2,14 @@ import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { useState } from "react";
 import { useParams } from "react-router-dom";
-import { remedyOf } from "../../shared/findings/facts";
+import type { RuleSetVersion } from "../../shared/acoustics/types";
+import { citationOf, criterionValue, levelBasis, ruleSetOf } from "../../shared/findings/basis";
+import { handoutsOf, listWords, protectorNames, remedyOf } from "../../shared/findings/facts";
 import { noticedSentence, orderSentence, remedyFigure } from "../../shared/findings/sentences";
 import { findingStateWord, findingWord } from "../../shared/findings/words";
 import { formatDate, formatInstant, formatShortDate } from "../../shared/format/date";
-import { formatLevel, formatLimit } from "../../shared/format/level";
-import { ruleSetVersion } from "../../shared/rule-sets";
+import { formatLevel } from "../../shared/format/level";
+import { RULE_SETS, ruleSetVersion } from "../../shared/rule-sets";
 import type { DayFigures, FindingView } from "../../shared/schemas/finding";
 import { Button, ButtonLink } from "../components/button";
 import { type DataColumn, DataTable } from "../components/data-table";
@@ -30,6 +32,7 @@ import { LookAtNotices } from "../features/notices/outgoing-notice";
 import { useUser } from "../features/session/session";
 import { useLocale } from "../lib/i18n";
 import { paths } from "../paths";
+import { useSiteChoice } from "./register-frame";
 import "../styles/findings.css";
 import "../styles/waiting.css";
 
@@ -58,11 +61,11 @@ export function Component() {
 function Finding({ finding }: { finding: FindingView }) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  const { worker, kind, facts, figures } = finding;
+  const { worker, kind, facts } = finding;
   const order = orderSentence(i18n, locale, kind, facts);
   const figure = remedyFigure(locale, facts, (word) => protectorWordText(i18n, word));
   const remedy = remedyOf(facts);
-  const ruleSet = figures && ruleSetVersion(figures.ruleSetKey, figures.ruleSetVersion);
+  const ruleSet = ruleSetBehind(finding);
   const who = worker?.name ?? finding.subjectName;
   return (
     <>
@@ -88,18 +91,31 @@ function Finding({ finding }: { finding: FindingView }) {
           lead={
             <>
               <b>{findingStateWord(i18n, finding.state)}.</b>{" "}
-              {noticedSentence(i18n, locale, kind, facts)}.
+              {noticedSentence(i18n, locale, kind, facts)}
+              {finding.rulesUntil &&
+                `, ${i18n.t("under the rules before {date}", { date: formatDate(finding.rulesUntil, locale) })}`}
+              .
             </>
           }
           actions={
-            remedy && worker && finding.can.handle && finding.state !== "closed" ? (
-              <ButtonLink
-                kind="primary"
-                to={`${paths.worker(worker.id)}?assign=${remedy.modelIds.join(",")}#protectors`}
-              >
-                {i18n.t("Assign it")}
-              </ButtonLink>
-            ) : undefined
+            remedy && worker && finding.can.handle && finding.state !== "closed"
+              ? handoutsOf(remedy).map((handout, at) => (
+                  <ButtonLink
+                    key={handout.modelIds.join()}
+                    kind={at === 0 ? "primary" : "plain"}
+                    to={paths.assign(worker.id, handout)}
+                  >
+                    {handout.taskNames.length > 0
+                      ? i18n.t("Assign {protector} for {tasks}", {
+                          protector: protectorNames(i18n, handout.names),
+                          tasks: listWords(i18n, handout.taskNames),
+                        })
+                      : i18n.t("Assign {protector}", {
+                          protector: protectorNames(i18n, handout.names),
+                        })}
+                  </ButtonLink>
+                ))
+              : undefined
           }
         />
         {finding.state !== "closed" && (
@@ -125,20 +141,50 @@ function Finding({ finding }: { finding: FindingView }) {
   );
 }
 
-/** The criterion that was exceeded: "uk-2005:limit" in words. */
-function useCriterionWords({ criterion, figures }: FindingView): string | null {
+/** What a finding rests on, kept with it; one that is older has it from its last day. */
+function ruleSetBehind({ facts, figures }: FindingView): RuleSetVersion | null {
+  const kept = ruleSetOf(facts);
+  if (kept || !figures) return kept;
+  return ruleSetVersion(figures.ruleSetKey, figures.ruleSetVersion) ?? null;
+}
+
+/** The rule set and, where it is about one, the criterion, with their source. */
+function Basis({ finding }: { finding: FindingView }) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  const [key = "", criterionId] = criterion.split(":");
-  if (!criterionId || !figures) return null;
-  const ruleSet = ruleSetVersion(key, figures.ruleSetVersion);
-  const found = ruleSet?.criteria.find(({ id }) => id === criterionId);
-  if (!ruleSet || !found) return null;
-  return i18n.t("{label} {value}, {citation}", {
-    label: i18n._(found.label),
-    value: formatLimit(found.levelDb ?? found.value, locale),
-    citation: `${ruleSet.citation}, ${found.citation}`,
-  });
+  const ruleSet = ruleSetBehind(finding);
+  if (!ruleSet) return null;
+  const [, criterionId] = finding.criterion.split(":");
+  const criterion = ruleSet.criteria.find(({ id }) => id === criterionId) ?? null;
+  const basis = criterion && levelBasis(i18n, locale, criterion);
+  return (
+    <MarginNote title={i18n.t("What it rests on")} isRuled>
+      <p>
+        {i18n.t("{title}, rule set version {version}.", {
+          title: i18n._(ruleSet.title),
+          version: ruleSet.version,
+        })}
+      </p>
+      {criterion && (
+        <p>
+          {i18n.t("{label} {value}", {
+            label: i18n._(criterion.label),
+            value: criterionValue(locale, criterion),
+          })}
+          {basis && ` (${basis})`}
+          {"."}
+        </p>
+      )}
+      <p>{`${citationOf(ruleSet, criterion)}.`}</p>
+      {finding.rulesUntil && (
+        <p>
+          {i18n.t("Other rules govern the site since {date}. The days below were judged before.", {
+            date: formatDate(finding.rulesUntil, locale),
+          })}
+        </p>
+      )}
+    </MarginNote>
+  );
 }
 
 function Evidence({ finding }: { finding: FindingView }) {
@@ -216,7 +262,9 @@ function Evidence({ finding }: { finding: FindingView }) {
               ? i18n.t("The worker reported it.")
               : finding.kind === "instrument"
                 ? i18n.t("It is about the instrument, not about a day.")
-                : i18n.t("The days that showed it were corrected.")}
+                : finding.steps.some(({ kind }) => kind === "rules-changed")
+                  ? i18n.t("The days that showed it were judged again, by other rules.")
+                  : i18n.t("The days that showed it were corrected.")}
           </Empty>
         }
       />
@@ -237,6 +285,14 @@ function stepWords(
       return i18n.t("Can’t, because");
     case "evidence-gone":
       return i18n.t("The day that showed it was corrected");
+    case "rules-changed": {
+      const now = RULE_SETS.find(({ key }) => key === step.text);
+      return now
+        ? i18n.t("Its days are judged by {rules} now and no longer show it: to be checked", {
+            rules: i18n._(now.title),
+          })
+        : i18n.t("Its days are judged by other rules now and no longer show it: to be checked");
+    }
     case "state":
       return step.fromState === null && step.toState === "new"
         ? i18n.t("Noticed")
@@ -263,11 +319,11 @@ function Steps({ finding }: { finding: FindingView }) {
             <span className="by">
               {step.authorName
                 ? i18n.t("by {name}", { name: step.authorName })
-                : step.kind === "state"
+                : step.kind === "state" || step.kind === "rules-changed"
                   ? i18n.t("by the program")
                   : ""}
             </span>
-            {step.text && step.kind !== "evidence-gone" && (
+            {step.text && step.kind !== "evidence-gone" && step.kind !== "rules-changed" && (
               <span className="said block">{step.text}</span>
             )}
           </span>
@@ -307,15 +363,11 @@ function Margin({ finding }: { finding: FindingView }) {
   const locale = useLocale();
   const user = useUser();
   const [look, setLook] = useState<{ id: string; recipientName: string } | null>(null);
-  const criterion = useCriterionWords(finding);
+  const { todayAt } = useSiteChoice();
   const timeZone = user.sites.find(({ id }) => id === finding.siteId)?.timeZone ?? "UTC";
   return (
     <>
-      {criterion && (
-        <MarginNote title={i18n.t("What was exceeded")} isRuled>
-          <p>{criterion}</p>
-        </MarginNote>
-      )}
+      <Basis finding={finding} />
       <MarginNote title={i18n.t("Since when, until when")}>
         <p>
           {finding.daysCount > 1
@@ -327,7 +379,12 @@ function Margin({ finding }: { finding: FindingView }) {
             : i18n.t("{date}.", { date: formatDate(finding.lastDate, locale) })}
         </p>
         {finding.dueOn && finding.state !== "closed" && (
-          <p>{i18n.t("Due {date}.", { date: formatDate(finding.dueOn, locale) })}</p>
+          <p>
+            {i18n.t("Due {date}.", { date: formatDate(finding.dueOn, locale) })}{" "}
+            {finding.dueOn < todayAt(finding.siteId) && finding.state !== "done" && (
+              <b className="label-ink">{i18n.t("Overdue.")}</b>
+            )}
+          </p>
         )}
         {finding.ownerName && <p>{i18n.t("In hand with {name}.", { name: finding.ownerName })}</p>}
         {finding.closedOn && (

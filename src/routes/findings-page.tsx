@@ -9,6 +9,7 @@ import { Folio, PageBody, PageHead } from "../components/page";
 import { FindingsTable } from "../features/findings/findings-table";
 import { findingQueries } from "../features/findings/queries";
 import { useUser } from "../features/session/session";
+import { useSiteChoice } from "./register-frame";
 import "../styles/findings.css";
 
 const STATES = FindingFilter.shape.state;
@@ -16,6 +17,7 @@ const STATES = FindingFilter.shape.state;
 export function Component() {
   const { i18n } = useLingui();
   const user = useUser();
+  const { todayAt } = useSiteChoice();
   const [search, setSearch] = useSearchParams();
   const state = STATES.catch("open").parse(search.get("state") ?? "open");
   const kind = FindingKind.safeParse(search.get("kind")).data;
@@ -80,6 +82,7 @@ export function Component() {
         </FilterRow>
         <FindingsTable
           rows={rows}
+          todayAt={todayAt}
           state={list.isSuccess ? "ready" : list.isError ? "failed" : "loading"}
           error={list.error}
           onRetry={() => void list.refetch()}

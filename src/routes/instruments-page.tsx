@@ -13,6 +13,7 @@ import { useEditParam } from "../lib/edit-param";
 import { useLocale } from "../lib/i18n";
 import { instrumentKindWord, settingsWords } from "../lib/register-words";
 import { paths } from "../paths";
+import { MeasuringWays } from "./measuring-frame";
 import { SiteChoice, useSiteChoice } from "./register-frame";
 
 const DAY_MS = 86_400_000;
@@ -50,7 +51,7 @@ export function Component() {
     <>
       <PageBody>
         <PageHead
-          way={<TextLink to={paths.runs}>{i18n.t("Runs")}</TextLink>}
+          way={<MeasuringWays />}
           title={i18n.t("Instruments")}
           lead={
             data &&
@@ -112,9 +113,9 @@ export function Component() {
               head: i18n.t("Instrument"),
               isRowHead: true,
               sortValue: ({ name }) => name,
-              cell: ({ name, kind, class: klass }) => (
+              cell: ({ id, name, kind, class: klass }) => (
                 <span className="two-lines">
-                  {name}
+                  <TextLink to={paths.instrument(id)}>{name}</TextLink>
                   <span className="beneath">
                     {i18n.t("{kind}, class {class}", {
                       kind: instrumentKindWord(i18n, kind),

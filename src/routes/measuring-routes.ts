@@ -1,3 +1,25 @@
+import { paths } from "../paths";
 import type { PageRoute } from "./page-route";
 
-export const measuringRoutes: PageRoute[] = [];
+/** Who reads runs and instruments, beside the office. */
+const READERS = ["officer", "auditor", "supervisor"] as const;
+
+export const measuringRoutes: PageRoute[] = [
+  { path: paths.toMeasure, lazy: () => import("./to-measure-page") },
+  { path: paths.workplaceChanges, lazy: () => import("./workplace-changes-page") },
+  { path: paths.surveys, lazy: () => import("./surveys-page") },
+  { path: paths.newSurvey, lazy: () => import("./survey-form-page"), roles: ["officer"] },
+  { path: paths.survey(":id"), lazy: () => import("./survey-page") },
+  { path: paths.changeSurvey(":id"), lazy: () => import("./survey-form-page"), roles: ["officer"] },
+  { path: paths.fieldSheet(":id"), lazy: () => import("./field-sheet-page") },
+  { path: paths.group(":jobId"), lazy: () => import("./group-page") },
+  { path: paths.outAndBack, lazy: () => import("./out-and-back-page") },
+  { path: paths.sample, lazy: () => import("./sample-page"), roles: ["officer"] },
+  { path: paths.runs, lazy: () => import("./runs-page"), roles: READERS },
+  { path: paths.newRun, lazy: () => import("./run-page"), roles: ["officer"] },
+  { path: paths.run(":id"), lazy: () => import("./run-page"), roles: READERS },
+  { path: paths.instruments, lazy: () => import("./instruments-page"), roles: READERS },
+  { path: paths.instrument(":id"), lazy: () => import("./instrument-page"), roles: READERS },
+  { path: paths.historyImports, lazy: () => import("./history-imports-page") },
+  { path: paths.historyImport(":id"), lazy: () => import("./history-import-page") },
+];

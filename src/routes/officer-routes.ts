@@ -16,7 +16,4 @@ export const officerRoutes: PageRoute[] = [
   { path: paths.result(":id", ":date"), lazy: () => import("./result-page") },
   { path: paths.storedResult(":id"), lazy: () => import("./result-page") },
   { path: paths.shift(":id"), lazy: () => import("./shift-page") },
-  { path: paths.runs, lazy: () => import("./runs-page") },
-  { path: paths.newRun, lazy: () => import("./run-page"), roles: ["officer"] },
-  { path: paths.run(":id"), lazy: () => import("./run-page") },
 ];

@@ -13,6 +13,5 @@ export const registerRoutes: PageRoute[] = [
   { path: paths.jobs, lazy: () => import("./jobs-page") },
   { path: paths.crews, lazy: () => import("./crews-page") },
   { path: paths.crew(":id"), lazy: () => import("./crew-page") },
-  { path: paths.instruments, lazy: () => import("./instruments-page") },
   { path: paths.imports, lazy: () => import("./import-page"), roles: ["officer"] },
 ];

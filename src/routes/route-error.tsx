@@ -1,9 +1,11 @@
 import { useLingui } from "@lingui/react";
-import { Component, type ReactNode } from "react";
+import { useQueryErrorResetBoundary } from "@tanstack/react-query";
+import { Component, lazy, type ReactNode, useEffect } from "react";
 import { Outlet, useLocation } from "react-router-dom";
 import { Failed } from "../components/failed";
 import { TextLink } from "../components/link";
 import { Page, PageBody, PageHead, RunningHead } from "../components/page";
+import { isNoSuchAddress } from "../lib/no-such-address";
 import { problemText } from "../lib/problem-text";
 import { paths } from "../paths";
 
@@ -11,16 +13,23 @@ import { paths } from "../paths";
 function RouteError({ error }: { error: unknown }) {
   const { i18n } = useLingui();
   return (
-    <Page head={<RunningHead />}>
-      <PageBody>
-        <PageHead title={i18n.t("This page could not be shown")} />
-        <Failed onRetry={() => window.location.reload()}>{problemText(i18n, error)}</Failed>
-        <p>
-          <TextLink to={paths.home}>{i18n.t("To your first page")}</TextLink>
-        </p>
-      </PageBody>
-    </Page>
+    <PageBody>
+      <PageHead title={i18n.t("This page could not be shown")} />
+      <Failed onRetry={() => window.location.reload()}>{problemText(i18n, error)}</Failed>
+      <p>
+        <TextLink to={paths.home}>{i18n.t("To your first page")}</TextLink>
+      </p>
+    </PageBody>
   );
+}
+
+const NotFound = lazy(() => import("./not-found").then((page) => ({ default: page.Component })));
+
+/** A page of something that is not there. Whoever comes back to the address asks the server again. */
+function NoSuchAddress() {
+  const { reset } = useQueryErrorResetBoundary();
+  useEffect(reset, [reset]);
+  return <NotFound />;
 }
 
 interface Caught {
@@ -28,7 +37,7 @@ interface Caught {
   readonly at: string;
 }
 
-class Boundary extends Component<{ at: string; children: ReactNode }, Caught> {
+class Boundary extends Component<{ at: string; isOuter: boolean; children: ReactNode }, Caught> {
   override state: Caught = { failed: null, at: this.props.at };
 
   static getDerivedStateFromError(error: unknown): Partial<Caught> {
@@ -42,11 +51,18 @@ class Boundary extends Component<{ at: string; children: ReactNode }, Caught> {
 
   override render() {
     const { failed } = this.state;
-    return failed ? <RouteError error={failed.error} /> : this.props.children;
+    if (!failed) return this.props.children;
+    const { error } = failed;
+    const words = isNoSuchAddress(error) ? <NoSuchAddress /> : <RouteError error={error} />;
+    return this.props.isOuter ? <Page head={<RunningHead />}>{words}</Page> : words;
   }
 }
 
 /** Around everything, and around the pages behind the sign-in, so that their head stays. */
-export function RouteErrorBoundary({ children = <Outlet /> }: { children?: ReactNode }) {
-  return <Boundary at={useLocation().key}>{children}</Boundary>;
+export function RouteErrorBoundary({ children }: { children?: ReactNode }) {
+  return (
+    <Boundary at={useLocation().key} isOuter={children !== undefined}>
+      {children ?? <Outlet />}
+    </Boundary>
+  );
 }

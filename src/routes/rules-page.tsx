@@ -55,6 +55,7 @@ export function Component() {
           rows={rows}
           rowKey={({ id }) => id}
           isTwoLine
+          stacksOnPhone
           columns={[
             {
               id: "site",

@@ -8,9 +8,10 @@ import { formatDuration } from "../../shared/format/duration";
 import { formatLevel } from "../../shared/format/level";
 import { type InstrumentView, type RunCorrection, RunView } from "../../shared/schemas/run";
 import { localDate } from "../../shared/time/zone";
-import { Button } from "../components/button";
+import { Button, ButtonLink } from "../components/button";
 import { ConflictDialog, type ConflictField } from "../components/conflict-dialog";
 import { type DataColumn, DataTable } from "../components/data-table";
+import { Empty } from "../components/empty";
 import { Failed } from "../components/failed";
 import {
   Form,
@@ -24,6 +25,7 @@ import { FormProblem } from "../components/form-problem";
 import { TextLink } from "../components/link";
 import { COMMON_SETTINGS } from "../components/meter-settings";
 import { Folio, MarginNote, PageBody, PageHead, Section } from "../components/page";
+import { instrumentQueries } from "../features/instruments/queries";
 import { runQueries, useRecordRun, useRunSaved } from "../features/runs/queries";
 import {
   CorrectRunFields,
@@ -42,9 +44,9 @@ import { useUser } from "../features/session/session";
 import { api } from "../lib/api";
 import { useChangeKey } from "../lib/change-key";
 import { useLocale } from "../lib/i18n";
-import { references } from "../lib/references";
 import { settingsWords } from "../lib/register-words";
 import { useRevisedSave } from "../lib/revised-save";
+import { doubtWord } from "../lib/run-words";
 import { paths } from "../paths";
 import "../styles/findings.css";
 import "../styles/register.css";
@@ -56,7 +58,7 @@ export function Component() {
   const { i18n } = useLingui();
   const { id } = useParams();
   const run = useQuery({ ...runQueries.one(id ?? ""), enabled: id !== undefined });
-  const instruments = useQuery(references.instruments());
+  const instruments = useQuery(instrumentQueries.list());
   if (id === undefined) {
     return instruments.data ? (
       <NewRun instruments={instruments.data.rows} />
@@ -258,10 +260,31 @@ function Run({ run, instruments }: { run: RunView; instruments: readonly Instrum
                     i18n.t("{drift} dB apart: within the tolerance.", { drift: figure(drift) })
                   ))}
               </p>
+              {run.doubts.map((code) => (
+                <p key={code}>
+                  <b>{doubtWord(i18n, code)}</b>
+                </p>
+              ))}
               {run.keptReason && (
-                <p>{i18n.t("Kept, because: {reason}", { reason: run.keptReason })}</p>
+                <>
+                  <p>{i18n.t("Kept, because: {reason}", { reason: run.keptReason })}</p>
+                  <p>{i18n.t("No result made of it bears the standard’s name.")}</p>
+                </>
               )}
             </MarginNote>
+            {run.files.length > 0 && (
+              <MarginNote title={i18n.t("Files")}>
+                <ul>
+                  {run.files.map(({ id, name }) => (
+                    <li key={id}>
+                      <a className="link" href={`/api/files/${id}`} download>
+                        {name}
+                      </a>
+                    </li>
+                  ))}
+                </ul>
+              </MarginNote>
+            )}
             <MarginNote title={i18n.t("Revision {number}", { number: run.revision })}>
               <p>
                 {[run.authorName, formatInstant(run.recordedAt, timeZone, locale)]
@@ -282,6 +305,8 @@ function Run({ run, instruments }: { run: RunView; instruments: readonly Instrum
           way={
             <>
               <TextLink to={paths.runs}>{i18n.t("Runs")}</TextLink>
+              {" / "}
+              <TextLink to={paths.instrument(run.instrumentId)}>{run.serialNumber}</TextLink>
               {run.workerId && (
                 <>
                   {" "}
@@ -295,24 +320,47 @@ function Run({ run, instruments }: { run: RunView; instruments: readonly Instrum
             date: formatDate(run.date, locale),
           })}
           lead={
-            run.isVoid ? (
-              <b>{i18n.t("Struck: it counts for nothing.")}</b>
-            ) : (
-              i18n.t("{duration}, {covers}.", {
-                duration: formatDuration(run.durationMin, locale),
-                covers: coversWords(i18n, run.covers),
-              })
-            )
+            <>
+              {run.isVoid ? (
+                <b>{i18n.t("Struck: it counts for nothing.")}</b>
+              ) : run.isOut ? (
+                <b>
+                  {i18n.t("Out since {time}: it has neither length nor readings yet.", {
+                    time: run.outAt ? formatInstant(run.outAt, timeZone, locale) : "–",
+                  })}
+                </b>
+              ) : (
+                i18n.t("{duration}, {covers}.", {
+                  duration: formatDuration(run.durationMin, locale),
+                  covers:
+                    run.taskId === null
+                      ? coversWords(i18n, run.covers)
+                      : i18n.t("a sample of its task"),
+                })
+              )}{" "}
+              {[
+                run.taskName,
+                run.place ?? run.areaName,
+                run.surveyName && i18n.t("survey {name}", { name: run.surveyName }),
+              ]
+                .filter(Boolean)
+                .join(", ")}
+            </>
           }
           actions={
             run.can.correct &&
             !run.isVoid &&
-            doing === null && (
+            doing === null &&
+            (run.isOut ? (
+              <ButtonLink to={`${paths.outAndBack}?site=${run.siteId}`}>
+                {i18n.t("Out and back")}
+              </ButtonLink>
+            ) : (
               <>
                 <Button onClick={() => setDoing("correct")}>{i18n.t("Correct")}</Button>
                 <Button onClick={() => setDoing("strike")}>{i18n.t("Strike")}</Button>
               </>
-            )
+            ))
           }
         />
         <DataTable
@@ -320,12 +368,26 @@ function Run({ run, instruments }: { run: RunView; instruments: readonly Instrum
           columns={columns}
           rows={run.readings}
           rowKey={({ settings }) => JSON.stringify(settings)}
+          empty={<Empty title={i18n.t("No reading was typed for this run.")} />}
         />
         <p className="after-table">
-          {run.workerId && !run.isVoid && (
+          {run.workerId && !run.isVoid && !run.isOut && run.taskId === null && (
             <TextLink to={paths.result(run.workerId, run.date)}>
               {i18n.t("The day it belongs to")}
             </TextLink>
+          )}
+          {run.taskId && <TextLink to={paths.task(run.taskId)}>{i18n.t("Its task")}</TextLink>}
+          {run.surveyId && (
+            <>
+              {" · "}
+              <TextLink to={paths.survey(run.surveyId)}>{i18n.t("Its survey")}</TextLink>
+            </>
+          )}
+          {run.historyId && (
+            <>
+              {" · "}
+              <TextLink to={paths.history(run.historyId)}>{i18n.t("Its time history")}</TextLink>
+            </>
           )}
           {run.shiftId && (
             <>
@@ -357,7 +419,8 @@ function Run({ run, instruments }: { run: RunView; instruments: readonly Instrum
 }
 
 const bodyOf = (run: RunView): RunCorrection => ({
-  durationMin: run.durationMin,
+  // Only what is back is corrected.
+  durationMin: run.durationMin as number,
   checkBeforeDb: run.checkBeforeDb,
   checkAfterDb: run.checkAfterDb,
   covers: run.covers,
@@ -444,7 +507,7 @@ function CorrectRun({
         <RunFactsFields
           form={form}
           presets={presetsOf(instrument)}
-          needsKeptReason={isCalibrationOut(instrument, run.date)}
+          needsKeptReason={isCalibrationOut(instrument, run.date) || run.doubts.length > 0}
         />
         <TextAreaField form={form} name="reason" label={i18n.t("Why it is corrected")} rows={2} />
         <FormProblem error={change.error} />

@@ -12,13 +12,16 @@ import { Empty } from "../components/empty";
 import { FilterRow, FilterSelect } from "../components/filter-row";
 import { TextLink } from "../components/link";
 import { Folio, PageBody, PageHead } from "../components/page";
+import { instrumentQueries } from "../features/instruments/queries";
 import { runQueries } from "../features/runs/queries";
 import { driftDb, isDriftTooLarge } from "../features/runs/run-fields";
 import { hasRole, useUser } from "../features/session/session";
 import { useLocale } from "../lib/i18n";
-import { references } from "../lib/references";
+import { doubtWord } from "../lib/run-words";
 import { paths } from "../paths";
+import { MeasuringWays } from "./measuring-frame";
 import "../styles/findings.css";
+import "../styles/register.css";
 import "../styles/runs.css";
 
 export function Component() {
@@ -26,7 +29,7 @@ export function Component() {
   const locale = useLocale();
   const user = useUser();
   const [search, setSearch] = useSearchParams();
-  const instruments = useQuery(references.instruments());
+  const instruments = useQuery(instrumentQueries.list());
   const instrumentId = instruments.data?.rows.find(({ id }) => id === search.get("instrument"))?.id;
   const siteId = user.sites.find(({ id }) => id === search.get("site"))?.id;
   const list = useInfiniteQuery(runQueries.list({ siteId, instrumentId }));
@@ -52,31 +55,45 @@ export function Component() {
           <span className="beneath">
             {run.isVoid
               ? i18n.t("struck")
-              : run.revision > 1
-                ? i18n.t("revision {number}", { number: run.revision })
-                : " "}
+              : run.isOut
+                ? i18n.t("out")
+                : run.revision > 1
+                  ? i18n.t("revision {number}", { number: run.revision })
+                  : " "}
           </span>
         </span>
       ),
     },
     {
       id: "worker",
-      head: i18n.t("Worn by"),
-      cell: ({ workerId, workerName }) =>
-        workerId ? (
-          <TextLink className="is-quiet is-name" to={paths.worker(workerId)}>
-            {workerName}
-          </TextLink>
-        ) : (
-          "–"
-        ),
+      head: i18n.t("Worn by, or taken at"),
+      cell: (run) => {
+        const { workerId, workerName, taskId, taskName, place, areaName } = run;
+        const where = [taskId && (place ?? areaName), run.surveyName].filter(Boolean).join(", ");
+        return (
+          <span className="two-lines">
+            {workerId ? (
+              <TextLink className="is-quiet is-name" to={paths.worker(workerId)}>
+                {workerName}
+              </TextLink>
+            ) : (
+              <span>{taskName ?? areaName ?? place ?? "–"}</span>
+            )}
+            <span className="beneath">
+              {[workerId && taskName, where].filter(Boolean).join(", ") || " "}
+            </span>
+          </span>
+        );
+      },
     },
     {
       id: "instrument",
       head: i18n.t("Instrument"),
       cell: (run) => (
         <span className="two-lines">
-          <span>{run.instrumentName}</span>
+          <TextLink className="is-quiet" to={paths.instrument(run.instrumentId)}>
+            {run.instrumentName}
+          </TextLink>
           <span className="beneath">{run.serialNumber}</span>
         </span>
       ),
@@ -118,7 +135,8 @@ export function Component() {
     {
       id: "check",
       head: i18n.t("Field checks"),
-      cell: ({ checkBeforeDb, checkAfterDb, keptReason }) => {
+      cell: ({ checkBeforeDb, checkAfterDb, keptReason, doubts, isOut }) => {
+        if (isOut) return <span className="beneath">{i18n.t("out")}</span>;
         const drift = driftDb(checkBeforeDb, checkAfterDb);
         return (
           <span className="two-lines">
@@ -127,6 +145,13 @@ export function Component() {
                 ? i18n.t("not both")
                 : i18n.t("{drift} dB apart", { drift: formatLevel(drift, locale) })}
             </span>
+            {doubts
+              .filter((code) => code !== "field-check-drift")
+              .map((code) => (
+                <span key={code} className="is-fault">
+                  {doubtWord(i18n, code)}
+                </span>
+              ))}
             {keptReason && (
               <span className="beneath">{i18n.t("kept: {reason}", { reason: keptReason })}</span>
             )}
@@ -139,19 +164,17 @@ export function Component() {
     <>
       <PageBody>
         <PageHead
+          way={<MeasuringWays />}
           title={i18n.t("Runs")}
           lead={i18n.t(
             "What instruments said, from out to back, each reading under its own settings.",
           )}
           actions={
-            <>
-              {hasRole(user, "officer") && (
-                <ButtonLink kind="primary" to={paths.newRun}>
-                  {i18n.t("New run")}
-                </ButtonLink>
-              )}
-              <ButtonLink to={paths.instruments}>{i18n.t("Instruments")}</ButtonLink>
-            </>
+            hasRole(user, "officer") && (
+              <ButtonLink kind="primary" to={paths.newRun}>
+                {i18n.t("New run")}
+              </ButtonLink>
+            )
           }
         />
         <FilterRow label={i18n.t("Narrow the runs")}>

@@ -15,6 +15,7 @@ import { TextButton } from "../components/link";
 import { Folio, Leaders, MarginNote, PageBody, PageHead, Section } from "../components/page";
 import { areaQueries } from "../features/areas/queries";
 import { LevelForm } from "../features/tasks/level-form";
+import { LevelSource, SurveyOfLevel } from "../features/tasks/level-source";
 import { taskQueries } from "../features/tasks/queries";
 import { Spectrum } from "../features/tasks/spectrum";
 import { TaskHeadForm } from "../features/tasks/task-head-form";
@@ -91,6 +92,11 @@ export function Component() {
                 <p className="not-assessed">{i18n.t("no level yet")}</p>
               )}
             </MarginNote>
+            {level?.surveyId && (
+              <MarginNote title={i18n.t("Where it comes from")}>
+                <LevelSource level={level} />
+              </MarginNote>
+            )}
             <MarginNote title={i18n.t("Area")}>
               <p>{task.areaName ?? i18n.t("None")}</p>
               <p>{zoneWord(i18n, task.zone)}</p>
@@ -258,6 +264,10 @@ export function Component() {
                   <span className="two-lines">
                     {[found.sourceNote || null, found.reason].filter(Boolean).join(". ") ||
                       i18n.t("first level")}
+                    {found.surveyId && <SurveyOfLevel level={found} />}
+                    {found.keptReasons.map((reason) => (
+                      <b key={reason}>{i18n.t("kept: {reason}", { reason })}</b>
+                    ))}
                     <span className="beneath">
                       {[found.authorName, formatInstant(found.createdAt, timeZone, locale)]
                         .filter(Boolean)

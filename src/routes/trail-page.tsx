@@ -18,7 +18,9 @@ import {
   SUBJECT_KINDS,
   subjectWord,
 } from "../features/trail/trail-words";
+import { type Names, nameText } from "../features/trail/value-text";
 import { useLocale } from "../lib/i18n";
+import { useIsPhone } from "../lib/use-is-phone";
 import "../styles/findings.css";
 import "../styles/trail.css";
 
@@ -26,14 +28,24 @@ import "../styles/trail.css";
 export function Component() {
   const { i18n } = useLingui();
   const locale = useLocale();
+  const isPhone = useIsPhone();
   const { sites } = useUser();
-  const timeZone = sites[0]?.timeZone ?? "UTC";
   const [search, setSearch] = useSearchParams();
   const kind = search.get("about");
   const subjectKind = isSubjectKind(kind) ? kind : null;
   const subjectId = search.get("one");
   const trail = useInfiniteQuery(trailQuery({ subjectKind, subjectId }));
   const rows = useMemo(() => trail.data?.pages.flatMap((page) => page.rows) ?? [], [trail.data]);
+  const names: Names = useMemo(
+    () =>
+      new Map(trail.data?.pages.flatMap((page) => page.names.map((thing) => [thing.id, thing]))),
+    [trail.data],
+  );
+  // What concerns no site, such as a person's sign-in, stands in the time of the reader's first.
+  const ownZone = sites[0]?.timeZone ?? "UTC";
+  const zoneOf = ({ timeZone }: AuditEventView) => timeZone ?? ownZone;
+  const zones = new Set(rows.map(zoneOf));
+  const oneZone = zones.size > 1 ? null : ([...zones][0] ?? ownZone);
 
   const narrow = (about: string | null, one: string | null) => {
     const next = new URLSearchParams();
@@ -42,12 +54,24 @@ export function Component() {
     setSearch(next);
   };
 
-  const columns: DataColumn<AuditEventView>[] = [
+  const wordsOf = (event: AuditEventView) => ({
+    i18n,
+    locale,
+    names,
+    timeZone: zoneOf(event),
+    subjectKind: event.subjectKind,
+  });
+  const wideColumns: DataColumn<AuditEventView>[] = [
     {
       id: "at",
       head: i18n.t("When"),
-      unit: timeZone,
-      cell: ({ at }) => <span className="event-time">{formatInstant(at, timeZone, locale)}</span>,
+      unit: oneZone,
+      cell: (event) => (
+        <span className="event-time">
+          {formatInstant(event.at, zoneOf(event), locale)}
+          {oneZone === null && <span className="event-zone">{zoneOf(event)}</span>}
+        </span>
+      ),
     },
     {
       id: "actor",
@@ -60,30 +84,53 @@ export function Component() {
     {
       id: "subject",
       head: i18n.t("About"),
-      cell: (event) =>
-        event.subjectId === null ? (
-          subjectWord(i18n, event.subjectKind)
-        ) : (
-          <TextButton
-            aria-label={i18n.t("Only this one: {subject}", {
-              subject: subjectWord(i18n, event.subjectKind),
-            })}
-            onClick={() => narrow(event.subjectKind, event.subjectId)}
-          >
-            {subjectWord(i18n, event.subjectKind)}
-          </TextButton>
-        ),
+      cell: (event) => {
+        const kind = subjectWord(i18n, event.subjectKind);
+        if (event.subjectId === null) return kind;
+        const named = names.has(event.subjectId) ? nameText(wordsOf(event), event.subjectId) : "";
+        return (
+          <span className="event-about">
+            {kind}{" "}
+            <TextButton
+              aria-label={i18n.t("Only this one: {subject}", {
+                subject: [kind, named].filter(Boolean).join(" "),
+              })}
+              onClick={() => narrow(event.subjectKind, event.subjectId)}
+            >
+              {named || i18n.t("only this one")}
+            </TextButton>
+          </span>
+        );
+      },
     },
     {
       id: "values",
       head: i18n.t("What changed"),
-      cell: ({ values }) => <EventValues values={values} />,
+      cell: (event) => <EventValues values={event.values} words={wordsOf(event)} />,
     },
     {
       id: "sealed",
       head: i18n.t("Sealed"),
       cell: ({ isSealed }) => (isSealed ? i18n.t("yes") : i18n.t("not yet")),
-      hidesOnPhone: true,
+    },
+  ];
+  // A phone has no room for columns: what they say stands beneath each other.
+  const phoneColumns: DataColumn<AuditEventView>[] = [
+    {
+      id: "event",
+      head: i18n.t("Event"),
+      unit: oneZone,
+      cell: (event) => (
+        <div className="event-stack">
+          {wideColumns
+            .filter(({ id }) => id !== "sealed")
+            .map(({ id, cell }) => (
+              <div key={id} className={`event-${id}`}>
+                {cell(event)}
+              </div>
+            ))}
+        </div>
+      ),
     },
   ];
 
@@ -115,7 +162,7 @@ export function Component() {
         </FilterRow>
         <DataTable
           caption={i18n.t("Trail")}
-          columns={columns}
+          columns={isPhone ? phoneColumns : wideColumns}
           rows={rows}
           rowKey={({ id }) => id}
           state={

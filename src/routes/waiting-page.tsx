@@ -2,9 +2,19 @@ import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { useEffect, useMemo, useState } from "react";
 import { useSearchParams } from "react-router-dom";
+import type { RuleSetVersion } from "../../shared/acoustics/types";
 import { noticedSentence } from "../../shared/findings/sentences";
-import { formatDay, formatDayMonth, formatTime, formatWeekday } from "../../shared/format/date";
-import { ruleSetVersion } from "../../shared/rule-sets";
+import { findingWord } from "../../shared/findings/words";
+import {
+  formatDate,
+  formatDay,
+  formatDayMonth,
+  formatTime,
+  formatWeekday,
+  localDateOf,
+} from "../../shared/format/date";
+import { withinSentence } from "../../shared/format/words";
+import { actionValueDb, mainLimit, ruleSetVersion } from "../../shared/rule-sets";
 import type { SessionUser } from "../../shared/schemas/session";
 import type { CrewProgress, WaitingView } from "../../shared/schemas/waiting";
 import { addDays } from "../../shared/time/zone";
@@ -15,10 +25,11 @@ import { OutgoingNotice } from "../features/notices/outgoing-notice";
 import { TroubledNotices } from "../features/notices/troubled-notices";
 import { useUser } from "../features/session/session";
 import { CrewRibbon } from "../features/waiting/crew-ribbon";
-import { placeFindings } from "../features/waiting/due";
+import { isBeforeNoise, type Placed, placeFindings } from "../features/waiting/due";
 import { waitingQuery } from "../features/waiting/queries";
 import { WaitingTable } from "../features/waiting/waiting-table";
 import { useLocale } from "../lib/i18n";
+import { useMoveFocus } from "../lib/move-focus";
 import { paths } from "../paths";
 import "../styles/findings.css";
 import "../styles/waiting.css";
@@ -51,19 +62,36 @@ export function Component() {
     return (id: string | undefined) =>
       (id === undefined ? undefined : zones.get(id)) ?? user.sites[0]?.timeZone ?? "UTC";
   }, [user.sites]);
-  const nowTimeAt = (id: string) => formatTime(now.toISOString(), zoneOf(id));
-  const items = data ? placeFindings(data.findings, data.crews, data.today, nowTimeAt) : [];
-  const urgent = items.filter(({ group }) => group === "before-noise").length;
+  const todayAt = (id: string) => localDateOf(now.toISOString(), zoneOf(id));
+  const { items, toBeChecked } = placeFindings(
+    data ? [...data.findings, ...data.toBeChecked] : [],
+    todayAt,
+  );
+  const urgent = items.filter(({ finding }) =>
+    isBeforeNoise(finding, todayAt(finding.siteId)),
+  ).length;
+  const overdue = items.filter(({ group }) => group === "overdue").length;
   const zones = [...new Set((data?.crews ?? []).map(({ timeZone }) => timeZone))];
-  const frame = items.find(({ finding }) => finding.figures)?.finding.figures;
-  const ruleSet = frame && ruleSetVersion(frame.ruleSetKey, frame.ruleSetVersion);
+  const governing = (data?.ruleSets ?? []).flatMap(({ siteName: name, ...one }) => {
+    const ruleSet = ruleSetVersion(one.ruleSetKey, one.ruleSetVersion);
+    return ruleSet ? [{ name, ruleSet }] : [];
+  });
   const choices = siteChoices(user);
   const siteName = (id: string) => user.sites.find((site) => site.id === id)?.name;
 
   return (
     <>
       <PageBody
-        margin={data && <WaitingMargin data={data} zoneOf={zoneOf} ownName={user.name} />}
+        margin={
+          data && (
+            <WaitingMargin
+              data={data}
+              toBeChecked={toBeChecked}
+              zoneOf={zoneOf}
+              ownName={user.name}
+            />
+          )
+        }
         marginWidthPx={220}
       >
         <PageHead
@@ -86,7 +114,14 @@ export function Component() {
                         "{count, plural, other {# of them before the worker goes back into noise.}}",
                         { count: urgent },
                       )
-                    : i18n.t("none of them before the worker goes back into noise."))}
+                    : i18n.t("none of them before the worker goes back into noise."))}{" "}
+                {overdue > 0 && (
+                  <b>
+                    {i18n.t("{count, plural, one {One is overdue.} other {# are overdue.}}", {
+                      count: overdue,
+                    })}
+                  </b>
+                )}
               </>
             ) : (
               " "
@@ -135,7 +170,7 @@ export function Component() {
         )}
         <WaitingTable
           items={items}
-          today={data?.today ?? ""}
+          todayAt={todayAt}
           state={data ? "ready" : error ? "failed" : "loading"}
           error={error}
           onRetry={() => void refetch()}
@@ -151,43 +186,63 @@ export function Component() {
             <TextLink to={paths.findings}>{i18n.t("All findings")}</TextLink>
           </p>
         )}
-        {items.length > 0 && (
-          <Reading
-            hasLimitAtEar={
-              ruleSet?.criteria.some(
-                ({ judged, kind }) => judged === "at-the-ear" && kind === "limit",
-              ) ?? true
-            }
-          />
-        )}
+        {items.length > 0 && <Reading ruleSets={governing.map(({ ruleSet }) => ruleSet)} />}
       </PageBody>
       <Folio>
-        {ruleSet &&
-          i18n.t("{title}, rule set version {version}.", {
-            title: i18n._(ruleSet.title),
-            version: ruleSet.version,
-          })}
+        {governing
+          .map(({ name, ruleSet }) => {
+            const title = i18n._(ruleSet.title);
+            const { version } = ruleSet;
+            return user.sites.length > 1
+              ? i18n.t("{site}: {title}, rule set version {version}.", {
+                  site: name,
+                  title,
+                  version,
+                })
+              : i18n.t("{title}, rule set version {version}.", { title, version });
+          })
+          .join(" ")}
       </Folio>
     </>
   );
 }
 
-/** How to read the figures, in one line under the table. */
-function Reading({ hasLimitAtEar }: { hasLimitAtEar: boolean }) {
+/** How to read the figures, in one line under the table: only what the rules in view have. */
+function Reading({ ruleSets }: { ruleSets: readonly RuleSetVersion[] }) {
   const { i18n } = useLingui();
+  const isAtEar = ruleSets.map((ruleSet) => mainLimit(ruleSet).judged === "at-the-ear");
+  const hasTarget = ruleSets.map((ruleSet) => actionValueDb(ruleSet) !== null);
+  const passed = i18n.t(
+    "the limit must not be exceeded. Tick past it: Over; whisker across it: Can’t tell yet.",
+  );
   return (
     <p className="how-to-read">
+      {isAtEar.includes(true) && (
+        <span>
+          <b>{i18n.t("At the ear")}</b> {passed}
+        </span>
+      )}
+      {isAtEar.includes(false) && (
+        <span>
+          <b>{i18n.t("Without protection")}</b>{" "}
+          {isAtEar.includes(true)
+            ? i18n.t("the same, where the rule’s limit is judged there.")
+            : passed}
+        </span>
+      )}
       <span>
-        <b>{hasLimitAtEar ? i18n.t("At the ear") : i18n.t("Without protection")}</b>{" "}
-        {i18n.t(
-          "the limit must not be exceeded. Tick past it: Over; whisker across it: Can’t tell yet.",
-        )}
+        {!hasTarget.includes(true)
+          ? i18n.t("▲ while worn; the rule states no target band")
+          : hasTarget.includes(false)
+            ? i18n.t("▲ while worn, against the target where the rule has one")
+            : i18n.t("▲ while worn, against the target")}
       </span>
-      <span>{i18n.t("▲ while worn, against the target")}</span>
-      <span>
-        <b>{i18n.t("Without protection")}</b>{" "}
-        {i18n.t("the action values ask for controls, wearing and zones.")}
-      </span>
+      {isAtEar.includes(true) && (
+        <span>
+          <b>{i18n.t("Without protection")}</b>{" "}
+          {i18n.t("the action values ask for controls, wearing and zones.")}
+        </span>
+      )}
     </p>
   );
 }
@@ -208,15 +263,30 @@ const CHECKS_SHOWN = 6;
 
 function WaitingMargin({
   data,
+  toBeChecked,
   zoneOf,
   ownName,
 }: {
   data: WaitingView;
+  toBeChecked: Placed["toBeChecked"];
   zoneOf: (siteId: string | undefined) => string;
   ownName: string;
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
+  const [said, setSaid] = useState("");
+  const [place, moveFocus] = useMoveFocus<HTMLDivElement>();
+  const tellSent = (people: number) => {
+    setSaid(
+      i18n.t(
+        "{people, plural, one {The notice is on its way.} other {# notices are on their way.}}",
+        {
+          people,
+        },
+      ),
+    );
+    moveFocus("[data-said]");
+  };
   const siteOfWorker = new Map(
     [...data.findings, ...data.toBeChecked].flatMap(({ worker, siteId }) =>
       worker ? [[worker.id, siteId] as const] : [],
@@ -231,12 +301,16 @@ function WaitingMargin({
       data.calibrationsDue.length ===
     0;
   return (
-    <>
+    <div ref={place} className="contents">
+      <p className="status" role="status" data-said tabIndex={-1}>
+        {said}
+      </p>
       {data.outgoing.map((entry) => (
         <OutgoingNotice
           key={entry.entryId}
           entry={entry}
           ownName={ownName}
+          onSent={tellSent}
           timeZone={zoneOfNotice(entry.notices.flatMap(({ workers }) => workers))}
         />
       ))}
@@ -244,22 +318,31 @@ function WaitingMargin({
         <TroubledNotices
           notices={data.troubled}
           timeZoneOf={({ workers }) => zoneOfNotice(workers)}
+          onSent={tellSent}
         />
       )}
-      {data.toBeChecked.length > 0 && (
+      {toBeChecked.length > 0 && (
         <MarginNote title={i18n.t("Done, to be checked")}>
-          {data.toBeChecked.slice(0, CHECKS_SHOWN).map((finding) => (
+          {toBeChecked.slice(0, CHECKS_SHOWN).map(({ finding, also }) => (
             <p key={finding.id}>
               <TextLink className="is-quiet is-name" to={paths.finding(finding.id)}>
                 {finding.worker?.name ?? finding.subjectName}
               </TextLink>{" "}
-              {noticedSentence(i18n, locale, finding.kind, finding.facts)}.
+              {noticedSentence(i18n, locale, finding.kind, finding.facts)}
+              {finding.rulesUntil &&
+                `; ${i18n.t("under the rules before {date}", { date: formatDate(finding.rulesUntil, locale) })}`}
+              {also
+                .filter(({ state }) => state !== "done")
+                .map(({ kind }) =>
+                  i18n.t(", and {what}", { what: withinSentence(findingWord(i18n, kind), locale) }),
+                )}
+              .
             </p>
           ))}
-          {data.toBeChecked.length > CHECKS_SHOWN && (
+          {toBeChecked.length > CHECKS_SHOWN && (
             <p>
               <TextLink to={`${paths.findings}?state=done`}>
-                {i18n.t("and {count} more", { count: data.toBeChecked.length - CHECKS_SHOWN })}
+                {i18n.t("and {count} more", { count: toBeChecked.length - CHECKS_SHOWN })}
               </TextLink>
             </p>
           )}
@@ -294,6 +377,6 @@ function WaitingMargin({
           </p>
         </MarginNote>
       )}
-    </>
+    </div>
   );
 }

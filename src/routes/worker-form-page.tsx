@@ -19,12 +19,14 @@ import {
 import { TextLink } from "../components/link";
 import { Folio, PageBody, PageHead } from "../components/page";
 import { RecordForm } from "../components/record-form";
+import { jobQueries } from "../features/jobs/queries";
 import { useUser } from "../features/session/session";
 import { workerQueries } from "../features/workers/queries";
 import { useLocale } from "../lib/i18n";
-import { references } from "../lib/references";
 import { paths } from "../paths";
 import "../styles/findings.css";
+
+const jobsOf = (siteId: string) => ({ ...jobQueries.list(siteId), enabled: siteId !== "" });
 
 const toBody = ({
   siteId,
@@ -86,7 +88,7 @@ function WorkerForm({ worker }: { worker: WorkerView | null }) {
     { value: "agency", label: i18n.t("agency") },
     { value: "contractor", label: i18n.t("contractor") },
   ];
-  const jobs = useQuery(references.jobs(worker?.siteId ?? firstSite?.id ?? ""));
+  const jobs = useQuery(jobsOf(worker?.siteId ?? firstSite?.id ?? ""));
   const fields: ConflictField<WorkerInput>[] = [
     { key: "name", label: i18n.t("Name"), show: ({ name }) => name },
     {
@@ -286,7 +288,7 @@ function JobField({
   siteId: string;
   children: (choices: { value: string; label: string }[]) => React.ReactNode;
 }) {
-  const { data } = useQuery(references.jobs(siteId));
+  const { data } = useQuery(jobsOf(siteId));
   return children(
     (data?.rows ?? [])
       .filter(({ isArchived }) => !isArchived)

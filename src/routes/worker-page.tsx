@@ -138,7 +138,7 @@ function WorkerSheet({ worker }: { worker: WorkerView }) {
         </div>
         <div className="beside-slip">
           <Protectors worker={worker} today={today} />
-          <OpenFindings worker={worker} />
+          <OpenFindings worker={worker} today={today} />
           <History worker={worker} />
         </div>
         {worker.can.issueCode && worker.leftOn === null && (
@@ -282,13 +282,14 @@ function Protectors({ worker, today }: { worker: WorkerView; today: string }) {
   );
 }
 
-function OpenFindings({ worker }: { worker: WorkerView }) {
+function OpenFindings({ worker, today }: { worker: WorkerView; today: string }) {
   const { i18n } = useLingui();
   const list = useInfiniteQuery(findingQueries.list({ state: "open", workerId: worker.id }));
   return (
     <Section title={i18n.t("Open findings")} id="findings">
       <FindingsTable
         hidesWorker
+        todayAt={() => today}
         rows={list.data?.pages.flatMap((page) => page.rows) ?? []}
         state={list.isSuccess ? "ready" : list.isError ? "failed" : "loading"}
         error={list.error}

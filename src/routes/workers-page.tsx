@@ -7,10 +7,10 @@ import { Empty } from "../components/empty";
 import { FilterCheck, FilterRow, FilterSelect, FilterText } from "../components/filter-row";
 import { TextButton } from "../components/link";
 import { Folio, PageBody, PageHead } from "../components/page";
+import { crewQueries } from "../features/crews/queries";
 import { hasRole, useUser } from "../features/session/session";
 import { workerQueries } from "../features/workers/queries";
 import { WorkersTable } from "../features/workers/workers-table";
-import { references } from "../lib/references";
 import { paths } from "../paths";
 import "../styles/findings.css";
 
@@ -23,7 +23,7 @@ export function Component() {
   const siteId = user.sites.find(({ id }) => id === search.get("site"))?.id;
   const crewId = search.get("crew") ?? undefined;
   const includeLeft = search.get("left") === "true";
-  const crews = useQuery(references.crews());
+  const crews = useQuery(crewQueries.list());
   const list = useInfiniteQuery({
     ...workerQueries.list({ search: asked, siteId, crewId, includeLeft }),
     placeholderData: keepPreviousData,

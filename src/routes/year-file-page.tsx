@@ -54,6 +54,7 @@ function useYearFrame(ruleSets: readonly { key: string; version: number }[] | un
 
 function YearFile({ site }: { site: SessionUser["sites"][number] }) {
   const { i18n } = useLingui();
+  const locale = useLocale();
   const { sites } = useUser();
   const [search, setSearch] = useSearchParams();
   const today = localDateOf(new Date().toISOString(), site.timeZone);
@@ -90,7 +91,7 @@ function YearFile({ site }: { site: SessionUser["sites"][number] }) {
       setError(refused);
       return;
     }
-    downloadYear(yearOfSite, workers);
+    downloadYear(yearOfSite, workers, locale);
     setSaid(i18n.t("The browser is taking both files. You may leave this page."));
   }
 

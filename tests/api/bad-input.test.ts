@@ -112,7 +112,11 @@ describe("bad input is answered clearly and changes nothing", () => {
       row({
         tasks: [],
         unaccounted: { how: "unknown" },
-        reading: { instrumentId: instrument.id, settings, dosePct: 20, durationMin: 480 },
+        run: {
+          instrumentId: instrument.id,
+          durationMin: 480,
+          readings: [{ settings, dosePct: 20 }],
+        },
       }),
     );
     expect(saved.body.refused).toEqual([]);
@@ -171,6 +175,21 @@ describe("bad input is answered clearly and changes nothing", () => {
     const { body, headers } = await nobody.get("/findings");
     expect(body).toMatchObject({ status: 401, code: "signed-out", type: "/problems/signed-out" });
     expect(body.requestId).toBe(headers["x-request-id"]);
+  });
+
+  test("an id or a date in the address that is none is not there; a filter that is none is refused", async () => {
+    const { client, worker } = await buildDesk();
+    for (const path of [
+      "/crews/junk/sheet",
+      "/workers/12345",
+      `/workers/${worker.id}/days/2026-02-30`,
+      "/findings/00000000-0000-0000-0000",
+    ]) {
+      const { status, body } = await client.get(path);
+      expect([path, status, body.code]).toEqual([path, 404, "not-found"]);
+    }
+    const filter = await client.get("/findings?workerId=junk");
+    expect([filter.status, filter.body.issues[0].params.format]).toEqual([422, "uuid"]);
   });
 
   test("a change without the revision it saw, and a create without a key, are asked for them", async () => {

@@ -332,16 +332,15 @@ describe("a crew's day", () => {
       weighting: "A",
       response: "slow",
     };
-    const reading = {
+    const run = {
       instrumentId: instrument.id,
-      settings,
-      averageDb: 86,
       durationMin: 480,
       covers: "shift",
+      readings: [{ settings, averageDb: 86 }],
     };
     const saved = await client.post(`/crews/${cell.crew.id}/day`, {
       date: yesterday,
-      rows: [worked(cell, cell.kept.id, { reading })],
+      rows: [worked(cell, cell.kept.id, { run })],
     });
     expect(saved.body.refused).toEqual([]);
     expect(saved.body.saved[0].figures.outsideDb).toBeCloseTo(86, 9);
@@ -352,6 +351,71 @@ describe("a crew's day", () => {
     const result = await client.get(`/workers/${cell.kept.id}/days/${yesterday}`);
     expect(result.body.evaluation.tasksDb).toBeCloseTo(93.9924, 3);
     expect(result.body.input.shifts[0].readings).toHaveLength(1);
+  });
+
+  test("a run with several settings rows is stored with the shift, and corrected row by row", async () => {
+    const cell = await buildCell();
+    const instrument = await buildInstrument({ site: cell.site });
+    const client = await signInAs(cell.officer);
+    const settings = (thresholdDb: number) => ({
+      criterionLevelDb: 90,
+      exchangeRateDb: 5,
+      thresholdDb,
+      weighting: "A",
+      response: "slow",
+    });
+    const run = { instrumentId: instrument.id, durationMin: 480, covers: "shift" };
+    const save = (more: object) =>
+      client.post(`/crews/${cell.crew.id}/day`, {
+        date: yesterday,
+        rows: [worked(cell, cell.kept.id, more)],
+      });
+    const first = await save({
+      run: {
+        ...run,
+        readings: [
+          { settings: settings(80), dosePct: 62 },
+          { settings: settings(90), dosePct: 41, lasMaxDb: 108 },
+        ],
+      },
+    });
+    expect(first.body.refused).toEqual([]);
+    const [saved] = first.body.saved;
+    expect(saved.readings).toMatchObject([
+      { settings: settings(80), dosePct: 62, runRevision: 1 },
+      { settings: settings(90), dosePct: 41, lasMaxDb: 108, runRevision: 1 },
+    ]);
+    const { runId } = saved.readings[0];
+    expect(saved.readings[1].runId).toBe(runId);
+
+    const { shiftId, revision } = saved.shift;
+    const changed = {
+      shiftId,
+      revision,
+      reason: "second row misread",
+      run: {
+        ...run,
+        runId,
+        runRevision: 1,
+        readings: [
+          { settings: settings(80), dosePct: 62 },
+          { settings: settings(90), dosePct: 44, lasMaxDb: 108 },
+        ],
+      },
+    };
+    const again = await save(changed);
+    expect(again.body.saved[0].readings).toMatchObject([
+      { dosePct: 62, runRevision: 2 },
+      { dosePct: 44, lasMaxDb: 108, runRevision: 2 },
+    ]);
+
+    const empty = await save({
+      ...changed,
+      run: { ...run, readings: [{ settings: settings(80) }] },
+    });
+    expect(empty.body.refused[0].issues).toMatchObject([
+      { path: ["run", "readings", 0], code: "reading-empty" },
+    ]);
   });
 
   test("absent, and present again", async () => {
@@ -375,6 +439,21 @@ describe("a crew's day", () => {
     ).toBe(false);
   });
 
+  test("the crew sheet's last shift is the latest recorded day, today's too", async () => {
+    const cell = await buildCell();
+    const officer = await signInAs(cell.officer);
+    const dates: string[] = [];
+    const { today } = (await officer.get(`/crews/${cell.crew.id}/day?date=${yesterday}`)).body;
+    for (const date of [yesterday, today]) {
+      await officer.post(`/crews/${cell.crew.id}/day`, {
+        date,
+        rows: [worked(cell, cell.kept.id)],
+      });
+      dates.push((await officer.get(`/crews/${cell.crew.id}/sheet`)).body.last.date);
+    }
+    expect(dates).toEqual([yesterday, today]);
+  });
+
   test("the supervisor sees own crew's sheet with one order a worker, and another crew is not there", async () => {
     const cell = await buildCell();
     const officer = await signInAs(cell.officer);
@@ -390,6 +469,7 @@ describe("a crew's day", () => {
     expect(sheet.body.expected.rows[0].figures.outsideDb).toBeCloseTo(93.9924, 3);
     const other = await buildCrew({ site: cell.site });
     expect((await client.get(`/crews/${other.id}/sheet`)).status).toBe(404);
+    expect((await client.get("/crews/junk/sheet")).body.code).toBe("not-found");
     expect((await client.get(`/crews/${cell.crew.id}/day?date=${yesterday}`)).status).toBe(403);
     const { findingId, revision } = sheet.body.last.rows[0].order;
     const done = await client.send({

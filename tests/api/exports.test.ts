@@ -36,7 +36,8 @@ describeEndpoint({
   as: "auditor",
   not: "worker",
   event: null,
-  bad: null,
+  bad: { path: "?language=xx" },
+  badField: "language",
   namesNothing: true,
   call: async () => ({ method: "get", path: "/exports/year-dictionary.csv" }),
 });
@@ -124,6 +125,30 @@ describe("the year's file", () => {
     const answer = await client.get(`/exports/year.csv?siteId=${site.id}&year=2026&workers=name`);
     const [record]: Record<string, string>[] = parse(answer.text, { columns: true });
     expect(record).toMatchObject({ worker: `'=HYPERLINK("x")\n"Δ 🔧`, at_ear_off_db: "-3.2" });
+  });
+
+  test("its dictionary lists the file's columns and nothing else, in the language asked for or the reader's own", async () => {
+    const { organizationId } = await buildSite();
+    const client = await signInAs(
+      await buildUser({ organizationId, roles: ["auditor"], language: "de" }),
+    );
+    const read = async (query: string) => {
+      const { text } = await client.get(`/exports/year-dictionary.csv${query}`);
+      return parse(text, { columns: true }) as Record<"name" | "meaning", string>[];
+    };
+    const [own, german, english] = [
+      await read(""),
+      await read("?language=de"),
+      await read("?language=en"),
+    ];
+    expect(own).toEqual(german);
+    for (const columns of [german, english])
+      expect(columns.map(({ name }) => name)).toEqual(YEAR_COLUMNS.map(({ name }) => name));
+    expect(english.map(({ meaning }) => meaning)).toEqual(
+      YEAR_COLUMNS.map(({ meaning }) => meaning),
+    );
+    for (const [place, { name, meaning }] of german.entries())
+      expect(meaning, name).not.toBe(english[place]?.meaning);
   });
 
   test("names a dose rule's level a time-weighted average, not an exposure level", async () => {

@@ -177,6 +177,7 @@ describe("sign-in", () => {
 
   test("a worker without e-mail binds the sign-in by a printed code, once", async () => {
     const site = await buildSite();
+    await buildSite({ organizationId: site.organizationId });
     const worker = await buildWorker({ site });
     const officer = await signInAs(
       await buildUser({ organizationId: site.organizationId, roles: ["officer"] }),
@@ -197,7 +198,16 @@ describe("sign-in", () => {
       code: body.code.toLowerCase(),
     });
     expect(right.status).toBe(200);
-    expect((await session(visitor)).user).toMatchObject({ workerId: worker.id, roles: ["worker"] });
+    expect((await session(visitor)).user).toMatchObject({
+      workerId: worker.id,
+      roles: ["worker"],
+      sites: [{ id: site.id }],
+    });
+    const grants = await select<{ role: string; site_id: string }>(
+      "SELECT g.role, g.site_id FROM role_grants g JOIN users u ON u.id = g.user_id WHERE u.worker_id = $1",
+      [worker.id],
+    );
+    expect(grants).toEqual([{ role: "worker", site_id: site.id }]);
     const other = new Visitor();
     await other.signIn(signInAddress(), person().sub);
     const used = await post(other, "/auth/worker-code", {

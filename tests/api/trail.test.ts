@@ -1,13 +1,17 @@
 import { createHash } from "node:crypto";
 import pg from "pg";
 import { describe, expect, test } from "vitest";
+import type { z } from "zod";
 import { canonicalJson, chainHash, sealEvents } from "../../server/lib/audit";
 import { execute, inTransaction, rows } from "../../server/lib/db";
+import type { AuditEventPage } from "../../shared/schemas/audit-event";
 import {
   buildArea,
+  buildCrew,
   buildOrganization,
   buildSite,
   buildUser,
+  buildWorker,
   select,
   signInAs,
   testApp,
@@ -150,6 +154,70 @@ describe("the trail", () => {
       expect(other).toBe(0);
     });
     expect(await seal()).toBe(1);
+  });
+});
+
+describe("who reads the trail", () => {
+  test("sees names for ids as far as they may see the thing, and the zone of the event's site", async () => {
+    const { id: organizationId } = await buildOrganization();
+    const site = await buildSite({ organizationId, timeZone: "America/Chicago" });
+    const other = await buildSite({ organizationId, timeZone: "Europe/London" });
+    const [own, lent] = [await buildWorker({ site }), await buildWorker({ site: other })];
+    const crew = await buildCrew({ site, name: "Press night" });
+    const officer = await signInAs(await buildUser({ organizationId, roles: ["officer"] }));
+    for (const { id: workerId } of [own, lent]) {
+      const member = { workerId, fromDate: "2026-05-04", isLoan: true };
+      expect((await officer.post(`/crews/${crew.id}/memberships`, member)).status).toBe(201);
+    }
+
+    const read = async (siteId?: string) => {
+      const auditor = await buildUser({ organizationId, roles: ["auditor"], siteId });
+      const { body } = await (await signInAs(auditor)).get("/audit-events?subjectKind=crew");
+      return body as z.infer<typeof AuditEventPage>;
+    };
+    const named = ({ names }: z.infer<typeof AuditEventPage>) =>
+      names.map(({ kind, id, name }) => [kind, id, name]).sort();
+    const ofCrew = ["crew", crew.id, "Press night"];
+    const everywhere = await read();
+    expect(everywhere.rows.map(({ timeZone }) => timeZone)).toEqual([
+      "America/Chicago",
+      "America/Chicago",
+    ]);
+    expect(named(everywhere)).toEqual(
+      [ofCrew, ["worker", own.id, own.name], ["worker", lent.id, lent.name]].sort(),
+    );
+    // The lent worker belongs to a site that this auditor does not read.
+    const here = await read(site.id);
+    expect(here.rows).toHaveLength(2);
+    expect(named(here)).toEqual([ofCrew, ["worker", own.id, own.name]].sort());
+    expect(JSON.stringify(here)).not.toContain(lent.name);
+    expect((await read(other.id)).rows).toEqual([]);
+  });
+
+  test("as administrator gets the names of linked workers, and nothing of the programme", async () => {
+    const { id: organizationId } = await buildOrganization();
+    const site = await buildSite({ organizationId });
+    const worker = await buildWorker({ site });
+    const client = await signInAs(await buildUser({ organizationId, roles: ["administrator"] }));
+    const user = {
+      name: "Linked",
+      email: "linked@dinward.example",
+      workerId: worker.id,
+      grants: [{ role: "worker", siteId: site.id }],
+    };
+    expect((await client.post("/users", user)).status).toBe(201);
+    const { body } = await client.get("/audit-events");
+    const { names, rows: events } = body as z.infer<typeof AuditEventPage>;
+    expect(events.map(({ action, timeZone }) => [action, timeZone])).toEqual([
+      ["create-user", null],
+    ]);
+    expect(names.map(({ kind, name }) => [kind, name]).sort()).toEqual(
+      [
+        ["site", site.name],
+        ["user", "Linked"],
+        ["worker", worker.name],
+      ].sort(),
+    );
   });
 });
 

@@ -7,6 +7,7 @@ export { buildAssignment, buildProtector } from "./protector";
 export { buildShift } from "./shift";
 export { type Call, Client, nobody, signInAs, testApp } from "./sign-in";
 export { buildArea, buildSite, type Site } from "./site";
+export { buildRun, buildSurvey, noRiskAnswers } from "./survey";
 export { buildJob, buildTask } from "./task";
 export { buildUser, type User } from "./user";
 export { buildCrew, buildSupervisorOf, buildWorker, type Worker } from "./worker";

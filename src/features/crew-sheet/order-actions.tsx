@@ -4,9 +4,11 @@ import { findingStateWord } from "../../../shared/findings/words";
 import { Button } from "../../components/button";
 import { TextButton } from "../../components/link";
 import { useChangeKey } from "../../lib/change-key";
+import { useMoveFocus } from "../../lib/move-focus";
 import { problemText } from "../../lib/problem-text";
-import { type OrderStep, type SheetOrder, useOrderStep } from "./queries";
-import { currentFinding, StaleOrder } from "./stale-order";
+import { savedMeanwhile } from "../../lib/stale";
+import { findingReply, type OrderStep, type SheetOrder, useOrderStep } from "./queries";
+import { StaleOrder } from "./stale-order";
 
 /** A reason of two letters says nothing; the server asks for three as well. */
 const SHORTEST_REASON = 3;
@@ -17,7 +19,7 @@ export function useSendStep(crewId: string, order: Pick<SheetOrder, "findingId" 
   const { keyFor, forget: forgetKey } = useChangeKey();
   const change = useOrderStep(crewId, order.findingId);
   const [asked, setAsked] = useState<OrderStep | null>(null);
-  const current = asked ? currentFinding(change.error) : null;
+  const current = asked ? savedMeanwhile(change.error, findingReply) : null;
 
   const send = (step: OrderStep, onSent: () => void, revision = order.revision) => {
     setAsked(step);
@@ -72,6 +74,9 @@ export function OrderActions({
   const [isTooShort, setIsTooShort] = useState(false);
   const [said, setSaid] = useState("");
   const id = useId();
+  const [place, moveFocus] = useMoveFocus<HTMLDivElement>();
+  const toState = () => moveFocus("[data-order-state]", "button");
+  const toCannot = () => moveFocus("[data-cannot]", "[data-order-state]");
 
   function submit(event: FormEvent) {
     event.preventDefault();
@@ -85,11 +90,12 @@ export function OrderActions({
       setIsRefusing(false);
       setText("");
       setSaid(i18n.t("Your reason is with the officer."));
+      toCannot();
     });
   }
 
   return (
-    <>
+    <div ref={place} className="contents">
       <div className="sheet-order">
         <div className="sheet-order-words">{words}</div>
         {order.canMarkDone ? (
@@ -99,19 +105,25 @@ export function OrderActions({
             isBusy={isBusy && asked?.kind === "mark-done"}
             aria-label={i18n.t("Mark done: {name}", { name: workerName })}
             onClick={() =>
-              send({ kind: "mark-done", text: "" }, () => setSaid(i18n.t("The officer checks it.")))
+              send({ kind: "mark-done", text: "" }, () => {
+                setSaid(i18n.t("The officer checks it."));
+                toState();
+              })
             }
           >
             {i18n.t("Mark done")}
           </Button>
         ) : (
-          <span className="sheet-state">{findingStateWord(i18n, order.state)}</span>
+          <span className="sheet-state" data-order-state tabIndex={-1}>
+            {findingStateWord(i18n, order.state)}
+          </span>
         )}
       </div>
       <p className="sheet-noticed">{noticed}</p>
       {order.canMarkDone && !isRefusing && (
         <TextButton
           className="sheet-cannot"
+          data-cannot
           aria-label={i18n.t("Can’t, because… {name}", { name: workerName })}
           onClick={() => setIsRefusing(true)}
         >
@@ -152,6 +164,7 @@ export function OrderActions({
                 setIsRefusing(false);
                 setIsTooShort(false);
                 forget();
+                toCannot();
               }}
             >
               {i18n.t("Cancel")}
@@ -177,6 +190,7 @@ export function OrderActions({
             forget();
             setIsRefusing(false);
             onStale();
+            toState();
           }}
           onSend={() =>
             send(
@@ -184,12 +198,14 @@ export function OrderActions({
               () => {
                 setIsRefusing(false);
                 setText("");
+                if (asked.kind === "mark-done") toState();
+                else toCannot();
               },
               current.revision,
             )
           }
         />
       )}
-    </>
+    </div>
   );
 }

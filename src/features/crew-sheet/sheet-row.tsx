@@ -1,5 +1,5 @@
 import { useLingui } from "@lingui/react";
-import { remedyOf } from "../../../shared/findings/facts";
+import { remedyOf, remedyWords } from "../../../shared/findings/facts";
 import { asReason, reasonText } from "../../../shared/findings/reasons";
 import { noticedSentence, orderSentence, remedyFigure } from "../../../shared/findings/sentences";
 import { findingWord } from "../../../shared/findings/words";
@@ -110,7 +110,7 @@ function Noticed({ order }: { order: SheetOrder }) {
       {remedy && figure && (
         <>
           {" "}
-          {i18n.t("{protector}: day {figure}.", { protector: remedy.names.join(" + "), figure })}
+          {i18n.t("{protector}: day {figure}.", { protector: remedyWords(i18n, remedy), figure })}
         </>
       )}
     </>

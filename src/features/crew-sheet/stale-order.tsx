@@ -3,21 +3,7 @@ import { findingStateWord } from "../../../shared/findings/words";
 import type { FindingView } from "../../../shared/schemas/finding";
 import { Button } from "../../components/button";
 import { Dialog } from "../../components/dialog";
-import { ApiError } from "../../lib/api";
-import { findingReply, type OrderStep } from "./queries";
-
-/** The finding as it stands now, where a step was refused because somebody was quicker. */
-export function currentFinding(error: unknown): FindingView | null {
-  if (!(error instanceof ApiError) || error.code !== "stale") return null;
-  const body: unknown = error.body;
-  const current =
-    typeof body === "object" && body !== null && "current" in body ? body.current : null;
-  try {
-    return findingReply.parse(current);
-  } catch {
-    return null;
-  }
-}
+import type { OrderStep } from "./queries";
 
 /** Both versions of an order and a choice: nothing is written over. */
 export function StaleOrder({

@@ -19,7 +19,7 @@ const isUnknown = (cell: Cell | undefined) => JSON.stringify(cell?.value ?? { ho
 export const savedRow = (gridRow: GridRow, saved: SavedShift, view: DayGridView): RowDraft =>
   openRow({ ...gridRow, saved }, view);
 
-/** Field by field what is yours and what is saved, where they differ. The reading has revisions of its own. */
+/** Field by field what is yours and what is saved, where they differ. The run has revisions of its own. */
 export function differences(
   yours: RowDraft,
   saved: RowDraft,
@@ -56,17 +56,17 @@ export function mergeRow(
     if (mine) cells[cell] = { ...mine, mark: "typed" };
     else delete cells[cell];
   }
-  if (yours.isReadingTouched && yours.cells.reading) cells.reading = yours.cells.reading;
+  if (yours.isRunTouched && yours.cells.reading) cells.reading = yours.cells.reading;
   return {
     ...saved,
     cells,
     note: taken.has("note") ? yours.note : saved.note,
     whichHour: taken.has("start") ? yours.whichHour : saved.whichHour,
     confirmsWholeDay: taken.has("length") ? yours.confirmsWholeDay : saved.confirmsWholeDay,
-    readingSetup: yours.isReadingTouched ? yours.readingSetup : saved.readingSetup,
-    isReadingTouched: yours.isReadingTouched,
+    runSetup: yours.isRunTouched ? yours.runSetup : saved.runSetup,
+    isRunTouched: yours.isRunTouched,
     answered: yours.answered,
-    isTouched: taken.size > 0 || yours.isReadingTouched,
+    isTouched: taken.size > 0 || yours.isRunTouched,
     isConfirmed: false,
   };
 }

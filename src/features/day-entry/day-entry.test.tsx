@@ -127,6 +127,37 @@ describe("with the keyboard alone", () => {
     expect(runUp(1)).toHaveTextContent("120");
   });
 
+  test("a word that begins with a is no absence: it stands in the cell with what is wrong", async () => {
+    const { user } = open(testDay(2));
+    act(() => runUp(1).focus());
+    await user.keyboard("abc");
+    expect(screen.getByRole("textbox", { name: "Run-up, Worker 1" })).toHaveValue("abc");
+    await user.keyboard("{Enter}");
+    expect(runUp(1)).toHaveTextContent("abc");
+    expect(screen.getByText("Run-up can’t be read.")).toBeVisible();
+    await user.keyboard("{ArrowUp}{F2}{Escape}12a{Enter}");
+    expect(row(1)).not.toHaveTextContent("no exposure recorded");
+    expect(runUp(1)).toHaveTextContent("12a");
+  });
+
+  test("a and then another key leaves the worker absent", async () => {
+    const { user } = open(testDay(2));
+    act(() => runUp(1).focus());
+    await user.keyboard("a{Enter}7");
+    expect(row(1)).toHaveTextContent("all day, no exposure recorded");
+    await user.keyboard("{Escape}{Shift>}a{/Shift}");
+    expect(row(2)).not.toHaveTextContent("no exposure recorded");
+  });
+
+  test("F8 goes there from anywhere on the page", async () => {
+    const { user } = open(testDay(3));
+    act(() => runUp(2).focus());
+    await user.keyboard("300{Enter}");
+    act(() => screen.getByRole("button", { name: "Save" }).focus());
+    await user.keyboard("{F8}");
+    expect(runUp(2)).toHaveFocus();
+  });
+
   test("F8 goes to what is wrong, which says how to mend it", async () => {
     const { user } = open(testDay(3));
     act(() => runUp(2).focus());
@@ -137,6 +168,7 @@ describe("with the keyboard alone", () => {
     expect(runUp(2)).toHaveFocus();
     await user.click(screen.getByRole("button", { name: "Make the shift 660 min" }));
     expect(screen.queryByText("660 min in a 480 min shift.")).toBeNull();
+    expect(row(2)).toContainElement(document.activeElement as HTMLElement);
   });
 
   test("Escape and Tab leave the grid", async () => {
@@ -227,6 +259,34 @@ describe("saving", () => {
         { taskId: TASK.control, durationMin: 340 },
       ],
     });
+  });
+});
+
+test("a run is entered with as many settings rows as the instrument has, and sent as one", async () => {
+  const sent = answerSaving(saveAll);
+  const { user } = open(testDay(2));
+  act(() => runUp(1).focus());
+  await user.keyboard("60");
+  await user.click(screen.getByText("More on this row"));
+  await user.click(screen.getByText("Reading of a run"));
+  await user.type(screen.getByRole("textbox", { name: "Level or dose, reading 1" }), "91.2");
+  await user.click(screen.getByRole("button", { name: "Another settings row" }));
+  await user.type(screen.getByRole("textbox", { name: "Level or dose, reading 2" }), "63 %");
+  await user.click(screen.getByRole("button", { name: "Another settings row" }));
+  await user.type(screen.getByRole("textbox", { name: "Level or dose, reading 3" }), "loud");
+  expect(screen.getByText("Reading can’t be read.")).toBeVisible();
+  await user.click(screen.getByRole("button", { name: /Take out reading 3/ }));
+  expect(row(1)).toHaveTextContent("1 of 2 91.2");
+  await user.keyboard("{Control>}{Enter}{/Control}");
+  await waitFor(() => expect(sent).toHaveLength(1));
+  const [first] = sent[0]?.rows ?? [];
+  expect(first?.kind === "worked" && first.run).toMatchObject({
+    runId: null,
+    durationMin: 480,
+    readings: [
+      { settings: { exchangeRateDb: 3, criterionLevelDb: 85 }, averageDb: 91.2, dosePct: null },
+      { settings: { exchangeRateDb: 5, thresholdDb: 80 }, averageDb: null, dosePct: 63 },
+    ],
   });
 });
 

@@ -15,12 +15,13 @@ import { problemText } from "../../lib/problem-text";
 import { paths } from "../../paths";
 import { cellOf } from "./cells";
 import { gridColumns } from "./columns";
-import { DayGrid, type GridFocus, gridWidthPx } from "./day-grid";
+import { DayGrid, type GridFocus } from "./day-grid";
 import { ConfirmDialog, ConflictDialog, ReasonDialog } from "./dialogs";
 import { isSettled, type RowDraft } from "./draft";
 import type { DraftStore } from "./draft-store";
 import { EntryNotices } from "./entry-notices";
-import { rulesOf } from "./evaluate-rows";
+import { type RowEvaluation, rulesOf } from "./evaluate-rows";
+import { gridLayout } from "./grid-layout";
 import type { GridFrame, MendAction } from "./grid-row";
 import type { Place } from "./paste";
 import { KeyLegend, RowPanel } from "./row-panel";
@@ -86,7 +87,8 @@ export function DayEntry({
     () => gridColumns(view.tasks, draft.addedTaskIds),
     [view.tasks, draft.addedTaskIds],
   );
-  const isWide = width === null || width >= gridWidthPx(columns, true);
+  const layout = useMemo(() => gridLayout(columns, width), [columns, width]);
+  const { isWide } = layout;
   const { governing } = rulesOf(view);
   const frame = useMemo((): GridFrame => {
     const names = new Map(view.tasks.map(({ id, name }) => [id, name]));
@@ -172,8 +174,20 @@ export function DayEntry({
   }
 
   function onMend(workerId: string, action: MendAction) {
-    const one = found.find(({ row }) => row.workerId === workerId);
+    const row = found.findIndex((one) => one.row.workerId === workerId);
+    const one = found[row];
     if (!one) return;
+    if (action === "choose") {
+      setChoosing(workerId);
+      return;
+    }
+    mend(one, action);
+    // What was pressed is gone with what was wrong.
+    goTo({ row, column: suspectColumn(row) });
+  }
+
+  function mend(one: RowEvaluation, action: Exclude<MendAction, "choose">) {
+    const { workerId } = one.row;
     switch (action) {
       case "lengthen":
         dispatch({
@@ -193,10 +207,7 @@ export function DayEntry({
       case "it-is-right": {
         const answered = [...one.row.answered, ...one.questions.map(({ key }) => key)];
         dispatch({ type: "patch-row", workerId, patch: { answered } });
-        return;
       }
-      case "choose":
-        setChoosing(workerId);
     }
   }
 
@@ -302,6 +313,7 @@ export function DayEntry({
           <DayGrid
             entry={entry}
             frame={frame}
+            layout={layout}
             label={i18n.t("Day of {crew}, {date}", {
               crew: view.crew.name,
               date: formatDay(view.date, locale),

@@ -17,7 +17,8 @@ import { useLocale } from "../../lib/i18n";
 import { editText, parseCell } from "./cells";
 import type { GridColumn } from "./columns";
 import { clearedCell, isSettled, type RowDraft } from "./draft";
-import { isTyping, placeAfterKey, placeAfterTab } from "./grid-keys";
+import { isAlone, isTyping, placeAfterKey, placeAfterTab } from "./grid-keys";
+import type { GridLayout } from "./grid-layout";
 import { type GridFrame, GridRow, type MendAction, STRIP_WIDTH_PX } from "./grid-row";
 import { MANY_ROWS, rowTops, visibleSegments } from "./grid-window";
 import {
@@ -31,6 +32,7 @@ import {
   rangeOf,
 } from "./paste";
 import { rowState } from "./row-state";
+import { withSoftHyphens } from "./syllables";
 import type { DayEntryState } from "./use-day-entry";
 import { columnName, unaccountedWords } from "./words";
 
@@ -53,6 +55,7 @@ interface Edit {
 export interface DayGridProps {
   readonly entry: DayEntryState;
   readonly frame: GridFrame;
+  readonly layout: GridLayout;
   readonly label: string;
   readonly focus: GridFocus;
   readonly onFocus: (place: Place) => void;
@@ -64,6 +67,7 @@ export interface DayGridProps {
 export function DayGrid({
   entry,
   frame,
+  layout,
   label,
   focus,
   onFocus,
@@ -81,6 +85,8 @@ export function DayGrid({
   const [edit, setEdit] = useState<Edit | null>(null);
   const [leaves, setLeaves] = useState(false);
   const [scroll, setScroll] = useState({ top: 0, heightPx: 800 });
+  /** The row as it was before its worker was marked absent by the key that was pressed last. */
+  const begun = useRef<RowDraft | null>(null);
   const shape = { rowCount: draft.rows.length, columns };
   const isLong = draft.rows.length > MANY_ROWS;
   const selection = rangeOf(anchor ?? focus, focus);
@@ -136,10 +142,29 @@ export function DayGrid({
     return () => region.removeEventListener("scroll", measure);
   }, [isLong]);
 
+  // Wherever on the page somebody is: in the grid, in the row's form, or nowhere after a button that is gone.
+  const pageKeys = useRef<(event: globalThis.KeyboardEvent) => void>(() => undefined);
+  pageKeys.current = (event) => {
+    const isSave = event.key === "Enter" && (event.ctrlKey || event.metaKey);
+    if (event.isComposing || !(isSave || event.key === "F8")) return;
+    if (document.querySelector("dialog[open]")) return;
+    event.preventDefault();
+    if (isSave) {
+      setEdit(null);
+      onSave();
+    } else goToProblem();
+  };
+  useEffect(() => {
+    const listen = (event: globalThis.KeyboardEvent) => pageKeys.current(event);
+    window.addEventListener("keydown", listen);
+    return () => window.removeEventListener("keydown", listen);
+  }, []);
+
   const rowAt = (at: number) => draft.rows[at];
   const columnAt = (at: number): GridColumn | undefined => columns[at];
 
   function go(place: Place, isExtending = false) {
+    begun.current = null;
     setLeaves(false);
     setEdit(null);
     setAnchor(isExtending ? (anchor ?? { row: focus.row, column: focus.column }) : null);
@@ -192,6 +217,16 @@ export function DayGrid({
     if (!row) return;
     dispatch({ type: "set-absent", workerId: row.workerId, isAbsent: !row.isAbsent });
     go(focus);
+    // Only now: going somewhere ends what an earlier press began.
+    begun.current = row.isAbsent ? null : row;
+  }
+
+  /** The letter was the first of a word, and the worker is not absent: the word goes into the cell, whatever it is. */
+  function writeWord(row: RowDraft, text: string) {
+    dispatch({ type: "restore-row", row });
+    setAnchor(null);
+    setEdit({ text, before: row, isOver: true });
+    write(row, text);
   }
 
   function goToProblem() {
@@ -239,16 +274,9 @@ export function DayGrid({
 
   /** Keys that do the same whether a cell is being written or not. */
   function onCommonKey(event: KeyboardEvent, isControl: boolean): boolean {
-    if (event.key === "Enter") {
-      if (isControl) {
-        setEdit(null);
-        onSave();
-      } else if (event.shiftKey) confirmRow();
+    if (event.key === "Enter" && !isControl) {
+      if (event.shiftKey) confirmRow();
       else go({ row: Math.min(focus.row + 1, draft.rows.length - 1), column: focus.column });
-      return true;
-    }
-    if (event.key === "F8") {
-      goToProblem();
       return true;
     }
     if (event.key === "Tab") {
@@ -284,6 +312,8 @@ export function DayGrid({
 
   function onCellKey(event: KeyboardEvent): boolean {
     const { key } = event;
+    const before = begun.current;
+    begun.current = null;
     const isControl = event.ctrlKey || event.metaKey;
     const next = placeAfterKey(key, isControl, focus, shape, PAGE_ROWS);
     if (next) {
@@ -314,12 +344,13 @@ export function DayGrid({
       onFocus({ row: draft.rows.length - 1, column: columns.length - 2 });
       return true;
     }
-    if (key.toLowerCase() === "a" && !isControl && !event.altKey) {
-      toggleAbsent();
+    if (isAlone(event, "a")) {
+      if (!event.repeat) toggleAbsent();
       return true;
     }
     if (!isTyping(event)) return false;
-    beginEdit(key);
+    if (before && columnAt(focus.column)?.cell) writeWord(before, `a${key}`);
+    else beginEdit(key);
     return true;
   }
 
@@ -428,12 +459,17 @@ export function DayGrid({
     return parts.join(" ");
   }
 
-  const latest = useRef({ onMend, dispatch });
-  latest.current = { onMend, dispatch };
+  function undoAbsent(workerId: string) {
+    dispatch({ type: "set-absent", workerId, isAbsent: false });
+    // The button is gone with the absence.
+    go({ row: draft.rows.findIndex((row) => row.workerId === workerId), column: focus.column });
+  }
+
+  const latest = useRef({ onMend, undoAbsent });
+  latest.current = { onMend, undoAbsent };
   const [stable] = useState(() => ({
     mend: (workerId: string, action: MendAction) => latest.current.onMend(workerId, action),
-    undoAbsent: (workerId: string) =>
-      latest.current.dispatch({ type: "set-absent", workerId, isAbsent: false }),
+    undoAbsent: (workerId: string) => latest.current.undoAbsent(workerId),
   }));
 
   return (
@@ -464,9 +500,9 @@ export function DayGrid({
         aria-colcount={columns.length + 1}
         aria-multiselectable="true"
         aria-describedby="day-grid-keys"
-        style={{ minWidth: gridWidthPx(columns, frame.isWide) }}
+        style={{ minWidth: layout.minWidthPx }}
       >
-        <GridHead frame={frame} />
+        <GridHead frame={frame} layout={layout} />
         <tbody>
           {segments.map((segment, at) => {
             if (segment.kind === "gap") {
@@ -523,58 +559,20 @@ function keepInSight(region: HTMLElement, top: number, bottom: number): void {
   else if (bottom > region.scrollTop + room) region.scrollTop = bottom - room;
 }
 
-type WidthOf = Readonly<Record<string, number>>;
-const WIDE_PX: WidthOf = {
-  who: 146,
-  start: 64,
-  length: 54,
-  unaccounted: 80,
-  sum: 44,
-  reading: 110,
-  protector: 106,
-  worn: 56,
-  ear: 120,
-  strip: 172,
-  outside: 116,
-  word: 112,
-};
-const NARROW_PX: WidthOf = {
-  who: 138,
-  start: 58,
-  length: 50,
-  unaccounted: 74,
-  sum: 42,
-  reading: 78,
-  protector: 90,
-  worn: 52,
-  ear: 0,
-  strip: 172,
-  outside: 0,
-  word: 116,
-};
-/** A letter of a column's head and the space beside it, px: the longest word stands unbroken. */
-const LETTER_PX = 6.7;
-const BESIDE_PX = 9;
-const LONGEST_WORD = 12;
-
-function taskWidthPx(name: string): number {
-  const longest = Math.max(...name.split(/[\s-]+/).map((word) => word.length));
-  const wordPx = Math.min(longest, LONGEST_WORD) * LETTER_PX + BESIDE_PX;
-  return Math.ceil(Math.max(50, wordPx));
-}
-
-/** What the columns need at least; the protector takes what is left. */
-export function gridWidthPx(columns: readonly GridColumn[], isWide: boolean): number {
-  const fixed = Object.values(isWide ? WIDE_PX : NARROW_PX).reduce((sum, width) => sum + width, 0);
-  return columns.reduce((sum, { task }) => sum + (task ? taskWidthPx(task.name) : 0), fixed);
-}
-
-function GridHead({ frame }: { frame: GridFrame }) {
+function GridHead({ frame, layout }: { frame: GridFrame; layout: GridLayout }) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const { columns, isWide } = frame;
-  const widths = isWide ? WIDE_PX : NARROW_PX;
+  const widths = layout.fixedPx;
+  const widthOf = ({ id, task }: GridColumn) => {
+    if (task) return layout.tasksPx.get(task.id);
+    return id === "protector" ? undefined : widths[id as Exclude<keyof typeof widths, "protector">];
+  };
   const typed = columns.filter(({ id }) => id !== "result");
+  const headName = (column: GridColumn) => {
+    const name = columnName(i18n, column);
+    return !column.task || layout.broken.has(column.task.id) ? withSoftHyphens(name) : name;
+  };
   const unit = (column: GridColumn) => {
     if (column.task) return formatLevel(column.task.level?.levelDb ?? null, locale);
     switch (column.id) {
@@ -594,13 +592,8 @@ function GridHead({ frame }: { frame: GridFrame }) {
     <>
       <colgroup>
         <col style={{ width: widths.who }} />
-        {typed.map(({ id, task }) => (
-          <col
-            key={id}
-            style={{
-              width: id === "protector" ? undefined : task ? taskWidthPx(task.name) : widths[id],
-            }}
-          />
+        {typed.map((column) => (
+          <col key={column.id} style={{ width: widthOf(column) }} />
         ))}
         {isWide && <col style={{ width: widths.ear }} />}
         <col style={{ width: widths.strip }} />
@@ -624,13 +617,8 @@ function GridHead({ frame }: { frame: GridFrame }) {
             {i18n.t("Worker")}
           </th>
           {typed.map((column) => (
-            <th
-              key={column.id}
-              scope="col"
-              className={`is-${column.task ? "task" : column.id}`}
-              lang={column.task ? undefined : i18n.locale}
-            >
-              <span className="head-name">{columnName(i18n, column)}</span>
+            <th key={column.id} scope="col" className={`is-${column.task ? "task" : column.id}`}>
+              <span className="head-name">{headName(column)}</span>
               {unit(column) && <span className="unit">{unit(column)}</span>}
             </th>
           ))}
@@ -654,8 +642,12 @@ function GridHead({ frame }: { frame: GridFrame }) {
             </th>
           )}
           <th scope="col" className="word">
-            {isWide ? i18n.t("Protector, while worn") : i18n.t("At the ear; protector while worn")}
-            <span className="unit">{i18n.t("dB")}</span>
+            {isWide && i18n.t("Protector, while worn")}
+            {!isWide &&
+              (frame.strip.hasLimitAtEar
+                ? i18n.t("At the ear; protector while worn")
+                : i18n.t("Without protection; protector while worn"))}
+            {isWide && <span className="unit">{i18n.t("dB")}</span>}
           </th>
         </tr>
       </thead>

@@ -14,7 +14,7 @@ export interface PendingSave {
   readonly body: string;
 }
 
-const VERSION = 1;
+const VERSION = 2;
 const keyOf = (userId: string, crewId: string, date: string) =>
   `dinward.day-entry.${VERSION}.${userId}.${crewId}.${date}`;
 

@@ -82,7 +82,7 @@ test("the last shift is copied to be looked at, and never with its reading", () 
   expect(row?.cells.start).toMatchObject({ value: "07:00", mark: "filled" });
   expect(row?.cells[taskCell(TASK.rigging)]).toBeUndefined();
   expect(row?.cells.reading).toEqual(reading);
-  expect(row && isSpoken({ ...row, isReadingTouched: false }, view.rows[0]!)).toBe(false);
+  expect(row && isSpoken({ ...row, isRunTouched: false }, view.rows[0]!)).toBe(false);
 });
 
 test("one share for the shift stands in place of the tasks' own", () => {

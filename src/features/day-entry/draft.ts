@@ -1,4 +1,6 @@
 import type { MeterSettings } from "../../../shared/acoustics/types";
+import type { ReadingFacts } from "../../../shared/schemas/evaluation";
+import { isEmptyReading } from "../../../shared/schemas/run";
 import type {
   DayGridView,
   DaySaveView,
@@ -7,15 +9,25 @@ import type {
   SavedShift,
   ShiftTaskInput,
 } from "../../../shared/schemas/shift";
-import { type Cell, type CellMark, type CellValue, cellOf, emptyCell } from "./cells";
+import { type Cell, type CellMark, type CellValue, cellOf, emptyCell, readingIn } from "./cells";
 import { type CellId, taskCell, wornCell } from "./columns";
 
 export type RowIssue = DaySaveView["refused"][number]["issues"][number];
 
-/** What belongs to a reading beside its figure. */
-export interface ReadingSetup {
-  readonly instrumentId: string;
+/** What the same instrument said under further settings. */
+export interface FurtherReading {
   readonly settings: MeterSettings;
+  readonly cell: Cell;
+  /** The stored reading that it opened with. */
+  readonly readingId: string | null;
+}
+
+/** What belongs to a run beside the figure in the grid's cell. */
+export interface RunSetup {
+  readonly instrumentId: string;
+  /** Those of the reading in the grid's cell. */
+  readonly settings: MeterSettings;
+  readonly further: readonly FurtherReading[];
   /** Run time; null: as long as the shift. */
   readonly durationMin: number | null;
   readonly covers: "shift" | "projected" | "part";
@@ -35,8 +47,8 @@ export interface RowDraft {
   readonly whichHour: "first" | "second" | null;
   readonly confirmsWholeDay: boolean;
   readonly note: string;
-  readonly readingSetup: ReadingSetup | null;
-  readonly isReadingTouched: boolean;
+  readonly runSetup: RunSetup | null;
+  readonly isRunTouched: boolean;
   /** Questions that were answered with "it is right". */
   readonly answered: readonly string[];
   /** What the server said no with, until the row changes. */
@@ -51,7 +63,7 @@ export interface DayDraft {
 export type RowPatch = Partial<
   Pick<
     RowDraft,
-    "whichHour" | "confirmsWholeDay" | "note" | "readingSetup" | "isReadingTouched" | "answered"
+    "whichHour" | "confirmsWholeDay" | "note" | "runSetup" | "isRunTouched" | "answered"
   >
 >;
 
@@ -75,11 +87,59 @@ export type DraftAction =
   | { type: "add-task"; taskId: string }
   | { type: "replace"; draft: DayDraft };
 
-/** Of a run with several settings rows the grid shows the first and changes none: the run's own page does. */
-export function editableRun(readings: readonly GridRun[]): GridRun | null {
-  const [first] = readings;
-  return first && readings.filter(({ runId }) => runId === first.runId).length === 1 ? first : null;
+/** The stored run that a row shows and changes: the first of the day, reading by reading. */
+export const runOf = (readings: readonly GridRun[]): readonly GridRun[] =>
+  readings.filter(({ runId }) => runId === readings[0]?.runId);
+
+/** A settings row of a run as it stands here, beside the stored reading that it opened with. */
+export interface SettingsRow {
+  readonly settings: MeterSettings;
+  readonly cell: Cell | undefined;
+  readonly stored: GridRun | null;
 }
+
+/** The run of a row, settings row by settings row; the first is that of the grid's cell. */
+export function settingsRows(row: RowDraft, gridRow: GridRow): SettingsRow[] {
+  if (!row.runSetup) return [];
+  const run = runOf(gridRow.readings);
+  const { settings, further } = row.runSetup;
+  return [
+    { settings, cell: row.cells.reading, stored: run[0] ?? null },
+    ...further.map(({ settings: others, cell, readingId }) => ({
+      settings: others,
+      cell,
+      stored: run.find((one) => one.readingId === readingId) ?? null,
+    })),
+  ];
+}
+
+/** What a settings row says; null where nothing was read under its settings. What is not shown here stays as it is. */
+function factsOf({ settings, cell, stored }: SettingsRow): ReadingFacts | null {
+  const kept = {
+    lceqDb: stored?.lceqDb ?? null,
+    lasMaxDb: stored?.lasMaxDb ?? null,
+    peak: stored?.peak ?? null,
+  };
+  const value = readingIn(cell);
+  const isAsStored = stored !== null && (!cell || cell.mark === "saved");
+  const facts = {
+    settings: settings as ReadingFacts["settings"],
+    dosePct: isAsStored ? stored.dosePct : value?.kind === "dose" ? value.dosePct : null,
+    averageDb: isAsStored ? stored.averageDb : value?.kind === "level" ? value.levelDb : null,
+    ...kept,
+  };
+  return isEmptyReading(facts) ? null : facts;
+}
+
+/** The readings of a row's run as they are to be stored, each with the stored one that it takes the place of. */
+export const enteredReadings = (
+  row: RowDraft,
+  gridRow: GridRow,
+): { facts: ReadingFacts; stored: GridRun | null }[] =>
+  settingsRows(row, gridRow).flatMap((one) => {
+    const facts = factsOf(one);
+    return facts ? [{ facts, stored: one.stored }] : [];
+  });
 
 type Cells = Partial<Record<CellId, Cell>>;
 
@@ -119,11 +179,9 @@ function savedCells(saved: SavedShift): Cells {
   return cells;
 }
 
-function readingCell(readings: readonly GridRun[]): Cell | null {
-  const [run] = readings;
-  if (!run) return null;
-  if (run.averageDb !== null) return cellOf({ kind: "level", levelDb: run.averageDb }, "saved");
-  return run.dosePct === null ? null : cellOf({ kind: "dose", dosePct: run.dosePct }, "saved");
+function readingCell({ averageDb, dosePct }: GridRun): Cell {
+  if (averageDb !== null) return cellOf({ kind: "level", levelDb: averageDb }, "saved");
+  return dosePct === null ? emptyCell("saved") : cellOf({ kind: "dose", dosePct }, "saved");
 }
 
 /** A row as it opens: what is saved; else filled in from roster and nominal day, so that only departures are typed. */
@@ -147,9 +205,8 @@ export function openRow(row: GridRow, view: DayGridView): RowDraft {
     const taskIds = nominal.map(({ taskId }) => taskId);
     if (row.assignments.length > 0) putLastWorn(cells, taskIds, row.lastWorn, isLoud);
   }
-  const reading = readingCell(readings);
-  if (reading) cells.reading = reading;
-  const run = editableRun(readings);
+  const [first, ...further] = runOf(readings);
+  if (first) cells.reading = readingCell(first);
   return {
     workerId: worker.id,
     base: saved && { shiftId: saved.shiftId, revision: saved.revision },
@@ -160,13 +217,20 @@ export function openRow(row: GridRow, view: DayGridView): RowDraft {
     whichHour: saved?.whichHour ?? null,
     confirmsWholeDay: saved?.lengthMin === 1440,
     note: saved?.note ?? "",
-    readingSetup: run && {
-      instrumentId: run.instrumentId,
-      settings: run.settings,
-      durationMin: run.durationMin,
-      covers: run.covers,
-    },
-    isReadingTouched: false,
+    runSetup: first
+      ? {
+          instrumentId: first.instrumentId,
+          settings: first.settings,
+          further: further.map((one) => ({
+            settings: one.settings,
+            cell: readingCell(one),
+            readingId: one.readingId,
+          })),
+          durationMin: first.durationMin,
+          covers: first.covers,
+        }
+      : null,
+    isRunTouched: false,
     answered: [],
     refused: [],
   };
@@ -191,10 +255,10 @@ function changeRow(row: RowDraft, change: Partial<RowDraft>): RowDraft {
 
 function withCells(row: RowDraft, changes: readonly CellChange[]): RowDraft {
   const cells: Cells = { ...row.cells };
-  let { isReadingTouched } = row;
+  let { isRunTouched } = row;
   for (const { cell, value } of changes) {
     cells[cell] = value;
-    if (cell === "reading") isReadingTouched = true;
+    if (cell === "reading") isRunTouched = true;
     // One figure for the whole shift stands in place of the tasks' own.
     if (cell === "worn")
       for (const id of Object.keys(cells) as CellId[]) if (id.startsWith("worn:")) delete cells[id];
@@ -203,7 +267,7 @@ function withCells(row: RowDraft, changes: readonly CellChange[]): RowDraft {
   const isOtherLength = changes.some(({ cell }) => cell === "length");
   return changeRow(row, {
     cells,
-    isReadingTouched,
+    isRunTouched,
     ...(isOtherTime && { whichHour: null }),
     ...(isOtherLength && { confirmsWholeDay: false }),
   });

@@ -105,13 +105,14 @@ describe("what is unlikely is asked about", () => {
     const view = testDay([gridRow(1)]);
     const row = typed(openDay(view), { reading: level });
     const [settings] = view.instruments[0]!.presets;
-    const readingSetup = {
+    const runSetup = {
       instrumentId: INSTRUMENT,
       settings: settings!,
+      further: [],
       durationMin: null,
       covers: "shift" as const,
     };
-    const found = createRowEvaluator(view)({ ...row, readingSetup });
+    const found = createRowEvaluator(view)({ ...row, runSetup });
     expect(found.problems).toEqual([]);
     expect(found.questions).toHaveLength(count);
     expect(found.summary?.outsideDb).toBeCloseTo(Number(level), 6);

@@ -16,9 +16,16 @@ import { type DaySummary, summarizeDay } from "../../../shared/day/summarize-day
 import { ruleSetInForce, ruleSetVersion } from "../../../shared/rule-sets/index";
 import type { DayGridView, GridRow, GridTask, ShiftTaskInput } from "../../../shared/schemas/shift";
 import { atLocalTime, type LocalInstant } from "../../../shared/time/zone";
-import { type CellFault, numberIn, readingIn, unaccountedIn } from "./cells";
+import { type CellFault, emptyCell, numberIn, unaccountedIn } from "./cells";
 import { type CellId, taskCell, wornCell } from "./columns";
-import { editableRun, type ReadingSetup, type RowDraft, type RowIssue } from "./draft";
+import {
+  enteredReadings,
+  type RowDraft,
+  type RowIssue,
+  type RunSetup,
+  runOf,
+  settingsRows,
+} from "./draft";
 
 /** Something that keeps a row from being saved, at the cell where it can be mended. */
 export type RowProblem =
@@ -40,7 +47,7 @@ export type RowProblem =
   | { readonly kind: "time-skipped" | "time-twice"; readonly cell: CellId; readonly time: string }
   | { readonly kind: "whole-day"; readonly cell: CellId }
   | { readonly kind: "no-instrument"; readonly cell: CellId }
-  | { readonly kind: "run-elsewhere"; readonly cell: CellId; readonly runId: string }
+  | { readonly kind: "run-emptied"; readonly cell: CellId; readonly runId: string }
   | { readonly kind: "shift-saved"; readonly cell: CellId; readonly shiftId: string }
   | { readonly kind: "refused"; readonly cell: CellId; readonly issue: RowIssue };
 
@@ -117,16 +124,29 @@ export function rulesOf({ settings, date }: Pick<DayGridView, "settings" | "date
   return { governing, comparison };
 }
 
-/** What a reading is taken to have been made with until somebody says otherwise. */
-export function usualSetup(view: DayGridView, rows: readonly RowDraft[]): ReadingSetup | null {
-  const last = rows.findLast((row) => row.isReadingTouched && row.readingSetup !== null);
-  if (last?.readingSetup) return { ...last.readingSetup, durationMin: null, covers: "shift" };
+/** What a run is taken to have been made with until somebody says otherwise: as the last one, row by row. */
+export function usualSetup(view: DayGridView, rows: readonly RowDraft[]): RunSetup | null {
+  const last = rows.findLast((row) => row.isRunTouched && row.runSetup !== null)?.runSetup;
+  if (last) {
+    const further = last.further.map(({ settings }) => ({
+      settings,
+      cell: emptyCell("typed"),
+      readingId: null,
+    }));
+    return { ...last, further, durationMin: null, covers: "shift" };
+  }
   const instrument =
     view.instruments.find(({ kind, presets }) => kind === "dosimeter" && presets.length > 0) ??
     view.instruments.find(({ presets }) => presets.length > 0);
   const [settings] = instrument?.presets ?? [];
   if (!instrument || !settings) return null;
-  return { instrumentId: instrument.id, settings, durationMin: null, covers: "shift" };
+  return {
+    instrumentId: instrument.id,
+    settings,
+    further: [],
+    durationMin: null,
+    covers: "shift",
+  };
 }
 
 /**
@@ -290,7 +310,7 @@ const shiftSaved = (shiftId: string): RowProblem => ({
 const CELL_OF_FIELD: Readonly<Record<string, CellId>> = {
   lengthMin: "length",
   unaccounted: "unaccounted",
-  reading: "reading",
+  run: "reading",
 };
 
 const refusals = (row: RowDraft): RowProblem[] =>
@@ -349,13 +369,21 @@ function problemsOf(
       });
     }
   }
-  if (row.isReadingTouched && readingIn(cells.reading)) {
-    const [first] = gridRow.readings;
-    if (first && !editableRun(gridRow.readings)) {
-      problems.push({ kind: "run-elsewhere", cell: "reading", runId: first.runId });
-    } else if (row.readingSetup === null) problems.push({ kind: "no-instrument", cell: "reading" });
-  }
+  if (row.isRunTouched) problems.push(...runProblems(row, gridRow));
   return problems;
+}
+
+function runProblems(row: RowDraft, gridRow: GridRow): RowProblem[] {
+  if (row.runSetup === null) {
+    return row.cells.reading?.value == null ? [] : [{ kind: "no-instrument", cell: "reading" }];
+  }
+  const faults = row.runSetup.further.flatMap(({ cell: { fault } }): RowProblem[] =>
+    fault ? [{ kind: "fault", cell: "reading", fault }] : [],
+  );
+  const [stored] = gridRow.readings;
+  return stored && faults.length === 0 && enteredReadings(row, gridRow).length === 0
+    ? [{ kind: "run-emptied", cell: "reading", runId: stored.runId }]
+    : faults;
 }
 
 /** Which task made the sum too long: the one furthest beyond its usual, else the longest that was typed. */
@@ -408,7 +436,7 @@ function questionsOf(
     const cell = taskCell(taskId);
     questions.push({ kind: "long-stay", key, cell, taskName, durationMin, longestMin });
   }
-  if (row.isReadingTouched && row.cells.reading?.mark === "typed") {
+  if (row.isRunTouched && settingsRows(row, gridRow).some(({ cell }) => cell?.mark === "typed")) {
     const { readingGapDb, tasksDb, outsideDb } = evaluate();
     const isKnown = readingGapDb !== null && tasksDb !== null && outsideDb !== null;
     if (isKnown && Math.abs(readingGapDb) >= FAR_OFF_DB) {
@@ -447,25 +475,26 @@ function readingsOf(
       instrument: instrumentClass,
     }),
   );
-  const value = readingIn(row.cells.reading);
-  const setup = row.readingSetup;
-  if (!row.isReadingTouched || !value || !setup || lengthMin === null) return stored;
-  const run = editableRun(gridRow.readings);
-  const typed: ReadingInput = {
-    id: run?.readingId ?? "typed",
-    runId: run?.runId ?? "typed",
-    settings: setup.settings,
-    durationMin: setup.durationMin ?? lengthMin,
-    dosePct: value.kind === "dose" ? value.dosePct : null,
-    averageDb: value.kind === "level" ? value.levelDb : null,
-    lceqDb: run?.lceqDb ?? null,
-    lasMaxDb: run?.lasMaxDb ?? null,
-    peak: run?.peak ?? null,
-    covers: setup.covers,
-    instrument: instrumentClassOf(instruments.get(setup.instrumentId)),
-    keptReason: run?.keptReason ?? null,
-  };
-  return [typed, ...stored.filter(({ runId }) => runId !== run?.runId)];
+  const setup = row.runSetup;
+  if (!row.isRunTouched || !setup || lengthMin === null) return stored;
+  const entered = enteredReadings(row, gridRow);
+  if (entered.length === 0) return stored;
+  const [run] = runOf(gridRow.readings);
+  const instrument = instrumentClassOf(instruments.get(setup.instrumentId));
+  return [
+    ...entered.map(
+      ({ facts, stored: replaced }, at): ReadingInput => ({
+        ...facts,
+        id: replaced?.readingId ?? `typed ${at}`,
+        runId: run?.runId ?? "typed",
+        durationMin: setup.durationMin ?? lengthMin,
+        covers: setup.covers,
+        instrument,
+        keptReason: run?.keptReason ?? null,
+      }),
+    ),
+    ...stored.filter(({ runId }) => runId !== run?.runId),
+  ];
 }
 
 const instrumentClassOf = (

@@ -57,13 +57,24 @@ export function placeAfterTab(
   return at === undefined ? null : { row: next, column: at };
 }
 
+interface Key {
+  readonly key: string;
+  readonly ctrlKey: boolean;
+  readonly metaKey: boolean;
+  readonly altKey: boolean;
+  readonly shiftKey: boolean;
+}
+
+/** A letter's key without any other, whether or not the keyboard is locked to capitals. */
+export const isAlone = (event: Key, letter: string): boolean =>
+  event.key.toLowerCase() === letter &&
+  !event.ctrlKey &&
+  !event.metaKey &&
+  !event.altKey &&
+  !event.shiftKey;
+
 /** A key that types a sign, and so begins to write in the cell. */
-export const isTyping = (event: {
-  key: string;
-  ctrlKey: boolean;
-  metaKey: boolean;
-  altKey: boolean;
-}): boolean =>
+export const isTyping = (event: Omit<Key, "shiftKey">): boolean =>
   [...event.key].length === 1 &&
   event.key !== " " &&
   !event.ctrlKey &&

@@ -17,9 +17,11 @@ import { Verdict } from "../../components/verdict";
 import { useLocale } from "../../lib/i18n";
 import { type Cell, editText, numberIn, readingIn, unaccountedIn } from "./cells";
 import type { CellId, GridColumn } from "./columns";
+import { enteredReadings } from "./draft";
 import type { RowEvaluation, RowProblem, RowQuestion } from "./evaluate-rows";
 import type { RowState } from "./row-state";
 import { rowStateWord } from "./row-words";
+import { withSoftHyphens } from "./syllables";
 import {
   columnName,
   problemWords,
@@ -212,6 +214,7 @@ function CellContent({
   cell,
   isFilled,
   found,
+  gridRow,
   frame,
 }: GridRowProps & { column: GridColumn; cell: Cell | undefined; isFilled: boolean }) {
   const { i18n } = useLingui();
@@ -226,7 +229,15 @@ function CellContent({
         </span>
       );
     case "reading":
-      return <ReadingContent found={found} cell={cell} locale={locale} isWide={frame.isWide} />;
+      return (
+        <ReadingContent
+          found={found}
+          gridRow={gridRow}
+          cell={cell}
+          locale={locale}
+          isWide={frame.isWide}
+        />
+      );
     case "protector":
       return <ProtectorContent found={found} />;
     case "worn":
@@ -262,19 +273,31 @@ function UnaccountedContent({ found, cell, isFilled = false, locale }: ContentPr
   );
 }
 
-function ReadingContent({ found, cell, locale, isWide }: ContentProps & { isWide: boolean }) {
+function ReadingContent({
+  found,
+  gridRow,
+  cell,
+  locale,
+  isWide,
+}: ContentProps & { gridRow: GridRowView; isWide: boolean }) {
   const { i18n } = useLingui();
   const value = readingIn(cell);
   if (cell?.text) return cell.text;
-  if (!value) return null;
+  const count = enteredReadings(found.row, gridRow).length;
+  const others = value ? count - 1 : count;
+  if (count === 0) return null;
   const { evaluation } = found;
   const governs = evaluation !== null && evaluation.tasksDb !== null;
   return (
     <span className="two-lines">
       <span>
-        {value.kind === "level"
-          ? formatLevel(value.levelDb, locale)
-          : `${editNumber(value.dosePct, locale)} %`}
+        {others > 0 && (
+          <span className="reading-count">
+            {value ? i18n.t("1 of {count}", { count }) : i18n.t("{count} others", { count })}{" "}
+          </span>
+        )}
+        {value?.kind === "level" && formatLevel(value.levelDb, locale)}
+        {value?.kind === "dose" && `${editNumber(value.dosePct, locale)} %`}
       </span>
       {governs && (
         <span className="under">
@@ -460,7 +483,7 @@ function Word({ found, frame }: GridRowProps) {
       beneath={
         frame.isWide && summary.decidingTaskName && summary.whileWornDb !== null ? (
           <>
-            {summary.decidingTaskName}{" "}
+            {withSoftHyphens(summary.decidingTaskName)}{" "}
             <span className="mono">{formatLevel(summary.whileWornDb, locale)}</span>
           </>
         ) : undefined

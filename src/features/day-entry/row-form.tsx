@@ -1,21 +1,26 @@
 import { useLingui } from "@lingui/react";
-import { useState } from "react";
+import { useId, useState } from "react";
 import { useForm } from "react-hook-form";
 import type { MeterSettings } from "../../../shared/acoustics/types";
 import { formatDuration } from "../../../shared/format/duration";
 import { formatLevel } from "../../../shared/format/level";
 import type { GridRow } from "../../../shared/schemas/shift";
+import { Button } from "../../components/button";
 import { ComboboxField } from "../../components/combobox-field";
 import { Field } from "../../components/form";
-import { TextLink } from "../../components/link";
+import { TextButton, TextLink } from "../../components/link";
+import { COMMON_SETTINGS, isSameSettings } from "../../components/meter-settings";
 import { useLocale } from "../../lib/i18n";
 import { paths } from "../../paths";
-import { cellOf, editText, parseCell, unaccountedIn } from "./cells";
+import { type Cell, cellOf, editText, emptyCell, parseCell, unaccountedIn } from "./cells";
 import { type CellId, type GridColumn, taskCell, wornCell } from "./columns";
-import { editableRun, type ReadingSetup } from "./draft";
+import { type FurtherReading, type RunSetup, runOf } from "./draft";
 import { type RowEvaluation, usualSetup, wornTaskIds } from "./evaluate-rows";
 import type { DayEntryState } from "./use-day-entry";
-import { problemWords, settingsText, unaccountedWords } from "./words";
+import { faultText, problemWords, settingsText, unaccountedWords } from "./words";
+
+/** As many as a run may have. */
+const MOST_READINGS = 12;
 
 interface RowFormProps {
   readonly entry: DayEntryState;
@@ -308,7 +313,20 @@ function Unaccounted({ entry, found }: RowFormProps) {
 
 const settingsKey = (settings: MeterSettings) => JSON.stringify(settings);
 
-/** Instrument, settings and what the reading covers; the figure itself is the grid's cell. */
+/** Settings to choose from: the instrument's own first, then the common ones. */
+function settingsChoices(own: readonly MeterSettings[]): MeterSettings[] {
+  const choices = new Map<string, MeterSettings>();
+  for (const { criterionLevelDb, exchangeRateDb, thresholdDb, weighting, response } of [
+    ...own,
+    ...COMMON_SETTINGS,
+  ]) {
+    const one = { criterionLevelDb, exchangeRateDb, thresholdDb, weighting, response };
+    choices.set(settingsKey(one), one);
+  }
+  return [...choices.values()];
+}
+
+/** Instrument, settings rows and what the run covers; the figure of the first row is the grid's cell. */
 function Reading(props: RowFormProps) {
   const { i18n } = useLingui();
   const locale = useLocale();
@@ -316,19 +334,10 @@ function Reading(props: RowFormProps) {
   const { row } = found;
   const { workerId } = row;
   const { instruments } = entry.view;
-  const usual = usualSetup(entry.view, entry.draft.rows);
-  const setup = row.readingSetup ?? usual;
+  const setup = row.runSetup ?? usualSetup(entry.view, entry.draft.rows);
   const [minutes, setMinutes] = useState<string | null>(null);
   const words = unaccountedWords(i18n);
-  const [first] = gridRow.readings;
-  if (first && !editableRun(gridRow.readings)) {
-    return (
-      <p className="beneath">
-        {i18n.t("The run of this day has several readings.")}{" "}
-        <TextLink to={paths.run(first.runId)}>{i18n.t("Open the run")}</TextLink>
-      </p>
-    );
-  }
+  const [stored] = runOf(gridRow.readings);
   if (!setup) {
     return (
       <p className="beneath">
@@ -337,33 +346,23 @@ function Reading(props: RowFormProps) {
       </p>
     );
   }
-  const patch = (change: Partial<ReadingSetup>) =>
+  const patch = (change: Partial<RunSetup>) =>
     entry.dispatch({
       type: "patch-row",
       workerId,
-      patch: { readingSetup: { ...setup, ...change }, isReadingTouched: true },
+      patch: { runSetup: { ...setup, ...change }, isRunTouched: true },
     });
-  const instrument = instruments.find(({ id }) => id === setup.instrumentId);
-  const presets = [...(instrument?.presets ?? [])] as MeterSettings[];
-  if (!presets.some((preset) => settingsKey(preset) === settingsKey(setup.settings))) {
-    presets.push(setup.settings);
-  }
+  const isOpen = row.cells.reading?.value != null || setup.further.length > 0;
   return (
-    <details className="row-more" open={row.cells.reading?.value != null || undefined}>
+    <details className="row-more" open={isOpen || undefined}>
       <summary>{i18n.t("Reading of a run")}</summary>
-      <CellField
-        {...props}
-        cell="reading"
-        label={i18n.t("Level or dose")}
-        note={i18n.t("98.9 is a level in dB, 63 % a dose")}
-      />
       <Field label={i18n.t("Instrument")} error={undefined}>
         {(wires) => (
           <select
             {...withoutReadOnly(wires)}
             className="input"
             value={setup.instrumentId}
-            disabled={first !== undefined}
+            disabled={stored !== undefined}
             onChange={(event) => {
               const next = instruments.find(({ id }) => id === event.target.value);
               const settings = next?.presets[0] ?? setup.settings;
@@ -378,29 +377,7 @@ function Reading(props: RowFormProps) {
           </select>
         )}
       </Field>
-      <Field
-        label={i18n.t("Settings")}
-        error={undefined}
-        note={i18n.t("A reading counts only for criteria with these settings.")}
-      >
-        {(wires) => (
-          <select
-            {...withoutReadOnly(wires)}
-            className="input"
-            value={settingsKey(setup.settings)}
-            onChange={(event) => {
-              const settings = presets.find((preset) => settingsKey(preset) === event.target.value);
-              if (settings) patch({ settings });
-            }}
-          >
-            {presets.map((preset) => (
-              <option key={settingsKey(preset)} value={settingsKey(preset)}>
-                {settingsText(i18n, preset, locale)}
-              </option>
-            ))}
-          </select>
-        )}
-      </Field>
+      <SettingsRows {...props} setup={setup} onPatch={patch} />
       <Field
         label={i18n.t("Run time")}
         unit={i18n.t("min")}
@@ -431,7 +408,7 @@ function Reading(props: RowFormProps) {
             {...withoutReadOnly(wires)}
             className="input"
             value={setup.covers}
-            onChange={(event) => patch({ covers: event.target.value as ReadingSetup["covers"] })}
+            onChange={(event) => patch({ covers: event.target.value as RunSetup["covers"] })}
           >
             <option value="shift">{i18n.t("the whole shift")}</option>
             <option value="projected">{i18n.t("a part, and the rest was like it")}</option>
@@ -440,6 +417,154 @@ function Reading(props: RowFormProps) {
         )}
       </Field>
     </details>
+  );
+}
+
+/** One line for each of the settings under which the instrument was read. */
+function SettingsRows({
+  setup,
+  onPatch,
+  ...props
+}: RowFormProps & { setup: RunSetup; onPatch: (change: Partial<RunSetup>) => void }) {
+  const { i18n } = useLingui();
+  const { entry, found } = props;
+  const { cells, workerId } = found.row;
+  const instrument = entry.view.instruments.find(({ id }) => id === setup.instrumentId);
+  const used = [setup.settings, ...setup.further.map(({ settings }) => settings)];
+  const isUsed = (settings: MeterSettings) => used.some((one) => isSameSettings(one, settings));
+  const choices = settingsChoices([...((instrument?.presets ?? []) as MeterSettings[]), ...used]);
+  const unused = choices.find((settings) => !isUsed(settings));
+  const setFurther = (at: number, change: Partial<FurtherReading>) =>
+    onPatch({
+      further: setup.further.map((one, place) => (place === at ? { ...one, ...change } : one)),
+    });
+  return (
+    <Field
+      label={i18n.t("Readings")}
+      error={undefined}
+      note={i18n.t(
+        "98.9 is a level in dB, 63 % a dose. A reading counts only for criteria with its settings.",
+      )}
+      isGroup
+    >
+      {() => (
+        <>
+          <SettingsLine
+            number={1}
+            settings={setup.settings}
+            cell={cells.reading}
+            choices={choices.filter((one) => isSameSettings(one, setup.settings) || !isUsed(one))}
+            onSettings={(settings) => onPatch({ settings })}
+            onCell={(value) =>
+              entry.dispatch({
+                type: "set-cells",
+                changes: [{ workerId, cell: "reading", value }],
+              })
+            }
+          />
+          {setup.further.map(({ settings, cell }, at) => (
+            <SettingsLine
+              // biome-ignore lint/suspicious/noArrayIndexKey: its settings can be chosen anew, and the focus stays
+              key={at}
+              number={at + 2}
+              settings={settings}
+              cell={cell}
+              choices={choices.filter((one) => isSameSettings(one, settings) || !isUsed(one))}
+              onSettings={(chosen) => setFurther(at, { settings: chosen })}
+              onCell={(value) => setFurther(at, { cell: value })}
+              onTakeOut={() =>
+                onPatch({ further: setup.further.filter((_, place) => place !== at) })
+              }
+            />
+          ))}
+          {unused && used.length < MOST_READINGS && (
+            <Button
+              onClick={() =>
+                onPatch({
+                  further: [
+                    ...setup.further,
+                    { settings: unused, cell: emptyCell("typed"), readingId: null },
+                  ],
+                })
+              }
+            >
+              {i18n.t("Another settings row")}
+            </Button>
+          )}
+        </>
+      )}
+    </Field>
+  );
+}
+
+function SettingsLine({
+  number,
+  settings,
+  cell,
+  choices,
+  onSettings,
+  onCell,
+  onTakeOut,
+}: {
+  number: number;
+  settings: MeterSettings;
+  cell: Cell | undefined;
+  choices: readonly MeterSettings[];
+  onSettings: (settings: MeterSettings) => void;
+  onCell: (cell: Cell) => void;
+  onTakeOut?: () => void;
+}) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const words = unaccountedWords(i18n);
+  const [text, setText] = useState<string | null>(null);
+  const errorId = useId();
+  const fault = cell?.fault ?? null;
+  const name = i18n.t("reading {number}", { number });
+  return (
+    <div className="settings-line">
+      <select
+        className="input"
+        aria-label={i18n.t("Settings of {reading}", { reading: name })}
+        value={choices.findIndex((one) => isSameSettings(one, settings))}
+        onChange={(event) => {
+          const chosen = choices[Number(event.target.value)];
+          if (chosen) onSettings(chosen);
+        }}
+      >
+        {choices.map((one, at) => (
+          <option key={settingsKey(one)} value={at}>
+            {settingsText(i18n, one, locale)}
+          </option>
+        ))}
+      </select>
+      <span className="field-line">
+        <input
+          className="input is-number"
+          aria-label={i18n.t("Level or dose, {reading}", { reading: name })}
+          aria-invalid={fault !== null || undefined}
+          aria-describedby={fault ? errorId : undefined}
+          autoComplete="off"
+          value={text ?? editText(cell, locale, words)}
+          onChange={(event) => {
+            setText(event.target.value);
+            onCell(parseCell("reading", event.target.value, locale, words));
+          }}
+          onBlur={() => setText(null)}
+        />
+        <span className="unit">{i18n.t("dB or %")}</span>
+        {onTakeOut && (
+          <TextButton onClick={onTakeOut}>
+            {i18n.t("Take out")} <span className="sr-only">{name}</span>
+          </TextButton>
+        )}
+      </span>
+      {fault && (
+        <p className="field-error" id={errorId}>
+          {faultText(i18n, fault)}
+        </p>
+      )}
+    </div>
   );
 }
 

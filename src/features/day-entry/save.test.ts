@@ -7,7 +7,7 @@ import { differences, mergeRow, savedRow } from "./conflicts";
 import { type DayDraft, isBehind, isSettled, openDay, reduceDraft } from "./draft";
 import { createRowEvaluator } from "./evaluate-rows";
 import { collectRows, countRows, draftAfter, viewAfter } from "./save";
-import { gridRow, savedShift, TASK, testDay, workerId } from "./test-day";
+import { gridRow, INSTRUMENT, savedShift, TASK, testDay, workerId } from "./test-day";
 
 const entryId = "00000000-0000-4000-8000-000000009999";
 const noNotices = {
@@ -142,4 +142,65 @@ test("a row that met another's revision waits for a choice, field by field", () 
   expect(merged.cells[taskCell(TASK.runUp)]?.value).toBe(100);
   expect(merged.cells[taskCell(TASK.control)]?.value).toBe(340);
   expect(mergeRow(row!, saved, new Set()).isTouched).toBe(false);
+});
+
+describe("a run that is saved with two settings rows", () => {
+  const id = (number: number) => `00000000-0000-4000-8000-${String(number).padStart(12, "0")}`;
+  const settings = (thresholdDb: number) => ({
+    criterionLevelDb: 90,
+    exchangeRateDb: 5 as const,
+    thresholdDb,
+    weighting: "A" as const,
+    response: "slow" as const,
+  });
+  const stored = (number: number, thresholdDb: number, averageDb: number) => ({
+    runId: id(800),
+    runRevision: 2,
+    readingId: id(number),
+    instrumentId: INSTRUMENT,
+    instrumentClass: "dosimeter" as const,
+    durationMin: 470,
+    covers: "shift" as const,
+    keptReason: null,
+    settings: settings(thresholdDb),
+    dosePct: 40,
+    averageDb,
+    lceqDb: null,
+    lasMaxDb: 112,
+    peak: null,
+  });
+  const view = testDay([
+    gridRow(1, { saved: savedShift(1), readings: [stored(801, 80, 92), stored(802, 90, 90.5)] }),
+  ]);
+  const change = (value: ReturnType<typeof cellOf>) =>
+    reduceDraft(openDay(view), {
+      type: "set-cells",
+      changes: [{ workerId: workerId(1), cell: "reading", value }],
+    });
+
+  test("keeps the one that nobody touched, with all that it says", () => {
+    const draft = change(cellOf({ kind: "level", levelDb: 93 }, "typed"));
+    const { rows, corrections } = collect(draft, view, "misread");
+    expect(corrections).toEqual([workerId(1)]);
+    expect(DayRowInput.safeParse(rows[0]).success).toBe(true);
+    expect(rows[0]?.kind === "worked" && rows[0].run).toMatchObject({
+      runId: id(800),
+      runRevision: 2,
+      readings: [
+        { settings: settings(80), averageDb: 93, dosePct: null, lasMaxDb: 112 },
+        { settings: settings(90), averageDb: 90.5, dosePct: 40, lasMaxDb: 112 },
+      ],
+    });
+  });
+
+  test("and is emptied, has to be struck where runs are", () => {
+    const bare = { ...stored(801, 80, 92), lasMaxDb: null };
+    const one = testDay([gridRow(1, { saved: savedShift(1), readings: [bare] })]);
+    const draft = reduceDraft(openDay(one), {
+      type: "set-cells",
+      changes: [{ workerId: workerId(1), cell: "reading", value: cellOf(null, "typed") }],
+    });
+    const { problems } = createRowEvaluator(one)(draft.rows[0]!);
+    expect(problems).toEqual([{ kind: "run-emptied", cell: "reading", runId: id(800) }]);
+  });
 });

@@ -5,8 +5,15 @@ import type {
   GridRow,
   SavedShift,
 } from "../../../shared/schemas/shift";
-import { readingIn } from "./cells";
-import { type DayDraft, editableRun, isSettled, isSpoken, openRow, type RowDraft } from "./draft";
+import {
+  type DayDraft,
+  enteredReadings,
+  isSettled,
+  isSpoken,
+  openRow,
+  type RowDraft,
+  runOf,
+} from "./draft";
 import type { EvaluateRow, RowEvaluation, RowValues } from "./evaluate-rows";
 
 /** Most rows that one request takes. */
@@ -43,23 +50,19 @@ export function saysTheSame(values: RowValues, note: string, saved: SavedShift):
   );
 }
 
-function readingOf(row: RowDraft, gridRow: GridRow, lengthMin: number): Worked["reading"] {
-  const value = readingIn(row.cells.reading);
-  const setup = row.readingSetup;
-  if (!row.isReadingTouched || !value || !setup) return null;
-  const run = editableRun(gridRow.readings);
+function enteredRun(row: RowDraft, gridRow: GridRow, lengthMin: number): Worked["run"] {
+  const setup = row.runSetup;
+  if (!row.isRunTouched || !setup) return null;
+  const readings = enteredReadings(row, gridRow).map(({ facts }) => facts);
+  if (readings.length === 0) return null;
+  const [stored] = runOf(gridRow.readings);
   return {
     instrumentId: setup.instrumentId,
-    settings: setup.settings as NonNullable<Worked["reading"]>["settings"],
-    runId: run?.runId ?? null,
-    runRevision: run?.runRevision ?? null,
+    runId: stored?.runId ?? null,
+    runRevision: stored?.runRevision ?? null,
     durationMin: setup.durationMin ?? lengthMin,
     covers: setup.covers,
-    dosePct: value.kind === "dose" ? value.dosePct : null,
-    averageDb: value.kind === "level" ? value.levelDb : null,
-    lceqDb: run?.lceqDb ?? null,
-    lasMaxDb: run?.lasMaxDb ?? null,
-    peak: run?.peak ?? null,
+    readings,
   };
 }
 
@@ -97,7 +100,7 @@ export function collectRows(
     }
     const { values } = found;
     if (!values) continue;
-    const reading = readingOf(row, gridRow, values.lengthMin);
+    const run = enteredRun(row, gridRow, values.lengthMin);
     const { saved } = gridRow;
     const isSame =
       saved !== null &&
@@ -107,11 +110,11 @@ export function collectRows(
       rows.push({ kind: "not-absent", workerId });
       sent.push(row);
     }
-    if (isSame && reading === null) {
+    if (isSame && run === null) {
       if (!gridRow.isAbsent) unchanged.push(workerId);
       continue;
     }
-    const isCorrection = (row.base !== null && !isSame) || (reading?.runId ?? null) !== null;
+    const isCorrection = (row.base !== null && !isSame) || (run?.runId ?? null) !== null;
     if (isCorrection) corrections.push(workerId);
     rows.push({
       kind: "worked",
@@ -127,7 +130,7 @@ export function collectRows(
       tasks: inSavedOrder(values.tasks, saved),
       note: row.note === "" ? null : row.note,
       confirmsWholeDay: row.confirmsWholeDay,
-      reading,
+      run,
     });
     sent.push(row);
   }

@@ -200,9 +200,9 @@ function withSetup(action: DraftAction, draft: DayDraft, view: DayGridView): Dra
   }
   const setup = usualSetup(view, draft.rows);
   const rows = draft.rows.map((row) =>
-    row.readingSetup === null &&
+    row.runSetup === null &&
     action.changes.some(({ cell, workerId }) => cell === "reading" && workerId === row.workerId)
-      ? { ...row, readingSetup: setup }
+      ? { ...row, runSetup: setup }
       : row,
   );
   return { type: "replace", draft: reduceDraft({ ...draft, rows }, action) };

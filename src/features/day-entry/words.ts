@@ -50,7 +50,7 @@ export function cellName(i18n: I18n, cell: CellId, taskName: (id: string) => str
   return columnName(i18n, { id: cell as GridColumn["id"], task: null });
 }
 
-function faultText(i18n: I18n, fault: CellFault): string {
+export function faultText(i18n: I18n, fault: CellFault): string {
   switch (fault) {
     case "ambiguous":
     case "not-a-duration":
@@ -99,6 +99,10 @@ function refusalText(i18n: I18n, { code, params, path }: RowIssue, locale: Local
       });
     case "task-unknown":
       return i18n.t("This task is not of this site.");
+    case "run-doubtful":
+      return i18n.t(
+        "This instrument had no certificate on that day. Record the run on its own page, with the reason why it is kept.",
+      );
     case "instrument-unknown":
       return i18n.t("This instrument is not known here.");
     case "worked-that-day":
@@ -184,10 +188,10 @@ export function problemWords(
         title: i18n.t("No instrument."),
         mend: i18n.t("Choose instrument and settings under “More on this row”."),
       };
-    case "run-elsewhere":
+    case "run-emptied":
       return {
-        title: i18n.t("This run has several readings."),
-        mend: i18n.t("Change them on the run’s own page."),
+        title: i18n.t("The run of this day is saved."),
+        mend: i18n.t("Write what it read, or strike it on the run’s own page."),
       };
     case "shift-saved":
       return {

@@ -1,6 +1,5 @@
 import { useLingui } from "@lingui/react";
 import { type ReactNode, useMemo } from "react";
-import { noticedSentence, orderSentence, remedyFigure } from "../../../shared/findings/sentences";
 import { findingStateWord, findingWord } from "../../../shared/findings/words";
 import { formatShortDate } from "../../../shared/format/date";
 import type { FindingRow } from "../../../shared/schemas/finding";
@@ -13,8 +12,9 @@ import {
   TableStripScale,
   useTableFrame,
 } from "../../components/day-figures";
+import { FindingDue } from "../../components/finding-due";
+import { FindingWords } from "../../components/finding-words";
 import { TextLink } from "../../components/link";
-import { protectorWordText } from "../../components/protector-word";
 import { useLocale } from "../../lib/i18n";
 import { paths } from "../../paths";
 
@@ -28,11 +28,14 @@ const overBy = ({ figures }: FindingRow): number =>
 export function FindingsTable({
   rows,
   hidesWorker = false,
+  todayAt,
   ...rest
 }: {
   rows: readonly FindingRow[];
   /** On a worker's own page. */
   hidesWorker?: boolean;
+  /** Today at a site: what was due before it is overdue. */
+  todayAt: (siteId: string) => string;
   empty: ReactNode;
 } & Pick<DataTableProps<FindingRow>, "state" | "error" | "onRetry" | "more">) {
   const { i18n } = useLingui();
@@ -51,11 +54,12 @@ export function FindingsTable({
     {
       id: "due",
       head: i18n.t("Due"),
-      cell: ({ dueOn, state }) => (
-        <span className="mono">
-          {dueOn && state !== "closed" ? formatShortDate(dueOn, locale) : "–"}
-        </span>
-      ),
+      cell: ({ dueOn, state, siteId }) =>
+        state === "closed" ? (
+          "–"
+        ) : (
+          <FindingDue dueOn={dueOn} today={todayAt(siteId)} isSettled={state === "done"} />
+        ),
     },
     {
       id: "wrong",
@@ -104,20 +108,16 @@ export function FindingsTable({
     {
       id: "todo",
       head: i18n.t("What to do, then what was noticed"),
-      cell: (finding) => {
-        const order = orderSentence(i18n, locale, finding.kind, finding.facts);
-        const figure = remedyFigure(locale, finding.facts, (word) => protectorWordText(i18n, word));
-        return (
-          <span className="two-lines">
-            <b>{figure ? i18n.t("{order}: {figure}", { order, figure }) : order}</b>
-            <span className="beneath">
-              {noticedSentence(i18n, locale, finding.kind, finding.facts)}
-              {finding.daysCount > 1 &&
-                `; ${i18n.t("{count, plural, other {# days since {date}}}", { count: finding.daysCount, date: formatShortDate(finding.firstDate, locale) })}`}
-            </span>
-          </span>
-        );
-      },
+      cell: (finding) => (
+        <FindingWords
+          finding={finding}
+          more={
+            finding.daysCount > 1
+              ? `; ${i18n.t("{count, plural, other {# days since {date}}}", { count: finding.daysCount, date: formatShortDate(finding.firstDate, locale) })}`
+              : ""
+          }
+        />
+      ),
     },
   ];
   return (

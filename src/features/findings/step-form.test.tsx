@@ -25,6 +25,7 @@ const view = (overrides: Partial<FindingView> = {}): FindingView =>
     lastDate: "2026-11-30",
     daysCount: 1,
     dueOn: "2026-12-01",
+    rulesUntil: null,
     siteId: id,
     worker: null,
     subjectName: null,
@@ -121,5 +122,5 @@ test("a stale step shows both versions; it goes again over the revision that sta
   const [, second] = fetched.mock.calls[1] as [string, RequestInit];
   expect(new Headers(second.headers).get("if-match")).toBe("2");
   expect(JSON.parse(String(second.body))).toEqual({ kind: "mark-done", text: "has Fenmuff low" });
-  expect(await screen.findByText("saved")).toBeDefined();
+  expect(await screen.findByText("Mark done: saved")).toBeDefined();
 });

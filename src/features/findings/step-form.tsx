@@ -18,7 +18,9 @@ import {
 import { Status } from "../../components/status";
 import { ApiError, newChangeKey } from "../../lib/api";
 import { useLocale } from "../../lib/i18n";
+import { useMoveFocus } from "../../lib/move-focus";
 import { problemText } from "../../lib/problem-text";
+import { savedMeanwhile } from "../../lib/stale";
 import { useFindingStep } from "./queries";
 
 type StepKind = FindingStepInput["kind"];
@@ -55,6 +57,7 @@ export function StepForm({ finding }: { finding: FindingView }) {
   const { i18n } = useLingui();
   const [chosen, setChosen] = useState<StepKind | null>(null);
   const [saved, setSaved] = useState<string | null>(null);
+  const [choice, moveFocus] = useMoveFocus<HTMLDivElement>();
   const kinds = stepsFor(finding);
   const labels: Readonly<Record<StepKind, string>> = {
     "take-in-hand": i18n.t("Take in hand"),
@@ -69,10 +72,16 @@ export function StepForm({ finding }: { finding: FindingView }) {
   return (
     <div className="step-form no-print">
       {/* biome-ignore lint/a11y/useSemanticElements: buttons that open a form, not form controls */}
-      <div className="step-choice" role="group" aria-label={i18n.t("What you do about it")}>
+      <div
+        ref={choice}
+        className="step-choice"
+        role="group"
+        aria-label={i18n.t("What you do about it")}
+      >
         {kinds.map((kind) => (
           <Button
             key={kind}
+            data-step={kind}
             aria-pressed={current === kind}
             onClick={() => {
               setChosen(current === kind ? null : kind);
@@ -82,7 +91,7 @@ export function StepForm({ finding }: { finding: FindingView }) {
             {labels[kind]}
           </Button>
         ))}
-        {saved && <Status>{saved}</Status>}
+        <Status>{saved}</Status>
       </div>
       {current && (
         <Step
@@ -92,9 +101,13 @@ export function StepForm({ finding }: { finding: FindingView }) {
           finding={finding}
           onDone={() => {
             setChosen(null);
-            setSaved(i18n.t("saved"));
+            setSaved(i18n.t("{step}: saved", { step: labels[current] }));
+            moveFocus("button");
           }}
-          onCancel={() => setChosen(null)}
+          onCancel={() => {
+            setChosen(null);
+            moveFocus(`[data-step="${current}"]`, "button");
+          }}
         />
       )}
     </div>
@@ -147,10 +160,9 @@ function useSend({ finding, onDone }: StepProps) {
         onError: (error) => {
           // The same change goes again under the same key only where nobody knows whether it arrived.
           if (!(error instanceof ApiError) || error.status !== 0) key.current = newChangeKey();
-          if (error instanceof ApiError && error.status === 412) {
-            const parsed = z.object({ current: FindingView }).safeParse(error.body);
-            if (parsed.success) setCurrent(parsed.data.current);
-          } else onIssues(error);
+          const saved = savedMeanwhile(error, FindingView);
+          if (saved) setCurrent(saved);
+          else onIssues(error);
         },
       },
     );

@@ -138,6 +138,11 @@ export function importIssueText(i18n: I18n, issue: ImportIssue): string {
       return i18n.t("The worker is not in that crew on that day.");
     case "reading-empty":
       return i18n.t("The line has settings and no reading.");
+    case "field-check-mistyped":
+      return i18n.t("A field check looks mistyped. Mend it, or say why the run is kept.");
+    case "calibration-out-of-date":
+    case "calibration-failed":
+      return i18n.t("The instrument had no certificate on that day. Say why the run is kept.");
     case "field-check-drift":
       return i18n.t(
         "The field checks drifted by more than 0.5 dB. Say under kept_reason why the run is kept, or take it out.",

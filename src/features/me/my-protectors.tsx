@@ -5,7 +5,7 @@ import { formatDate } from "../../../shared/format/date";
 import { Empty } from "../../components/empty";
 import { protectorWordText } from "../../components/protector-word";
 import { useLocale } from "../../lib/i18n";
-import { type OwnProtector, protectorOfDay } from "./own-protectors";
+import type { OwnProtector } from "./own-protectors";
 import type { OwnDay } from "./queries";
 import { nameOf } from "./what-to-do";
 
@@ -26,11 +26,11 @@ export function MyProtectors({
   const { i18n } = useLingui();
   const locale = useLocale();
   if (protectors.length === 0) return <Empty title={i18n.t("None is assigned to you.")} />;
-  const judged = lastDay?.word ? protectorOfDay(protectors, lastDay) : null;
   return (
     <ul className="me-protectors">
       {protectors.map((one) => {
-        const word = one === judged ? (lastDay?.word ?? null) : null;
+        const word =
+          lastDay?.wordsByUse.find(({ assignmentId }) => assignmentId === one.id)?.word ?? null;
         const isFault = word === "too-little" || word === "too-much";
         return (
           <li key={one.id}>

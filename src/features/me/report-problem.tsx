@@ -2,6 +2,7 @@ import { useLingui } from "@lingui/react";
 import { type FormEvent, useId, useState } from "react";
 import { Button } from "../../components/button";
 import { useChangeKey } from "../../lib/change-key";
+import { useMoveFocus } from "../../lib/move-focus";
 import { problemText } from "../../lib/problem-text";
 import { useReportProblem } from "./queries";
 
@@ -18,6 +19,7 @@ export function ReportProblem({ workerId }: { workerId: string }) {
   const [text, setText] = useState("");
   const [isTooShort, setIsTooShort] = useState(false);
   const [isSent, setIsSent] = useState(false);
+  const [place, moveFocus] = useMoveFocus<HTMLDivElement>();
 
   function submit(event: FormEvent) {
     event.preventDefault();
@@ -35,13 +37,14 @@ export function ReportProblem({ workerId }: { workerId: string }) {
           setText("");
           setIsOpen(false);
           setIsSent(true);
+          moveFocus("button");
         },
       },
     );
   }
 
   return (
-    <>
+    <div ref={place} className="contents">
       {isOpen ? (
         <form className="me-form" onSubmit={submit} noValidate>
           <label htmlFor={id}>{i18n.t("What is the problem?")}</label>
@@ -79,6 +82,7 @@ export function ReportProblem({ workerId }: { workerId: string }) {
             onClick={() => {
               setIsOpen(false);
               setIsTooShort(false);
+              moveFocus("button");
             }}
           >
             {i18n.t("Cancel")}
@@ -99,6 +103,6 @@ export function ReportProblem({ workerId }: { workerId: string }) {
       <p className="me-note" role="status">
         {isSent && i18n.t("Thank you. Your safety officer has it.")}
       </p>
-    </>
+    </div>
   );
 }

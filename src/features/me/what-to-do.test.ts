@@ -29,6 +29,7 @@ const day = (facts: Partial<OwnDay> = {}): OwnDay => ({
   isStale: false,
   limit: { levelDb: 87, isAtEar: true },
   kindsOver: ["action"],
+  wordsByUse: [],
   ...facts,
 });
 const protector = (facts: Partial<OwnProtector> = {}): OwnProtector => ({

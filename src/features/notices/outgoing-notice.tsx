@@ -11,6 +11,7 @@ import { Dialog } from "../../components/dialog";
 import { Failed } from "../../components/failed";
 import { TextButton } from "../../components/link";
 import { MarginNote } from "../../components/page";
+import { useMoveFocus } from "../../lib/move-focus";
 import { problemText } from "../../lib/problem-text";
 import { noticeTextQuery, useHandleNotices } from "./queries";
 
@@ -19,14 +20,21 @@ export function OutgoingNotice({
   entry,
   timeZone,
   ownName,
+  onSent,
 }: {
   entry: EntryNotices;
   timeZone: string;
   ownName: string;
+  /** It was let go, and this note will not stand here much longer. */
+  onSent?: (people: number) => void;
 }) {
   const { i18n } = useLingui();
   const [isLooking, setIsLooking] = useState(false);
-  const handle = useHandleNotices(entry.entryId);
+  const [place, moveFocus] = useMoveFocus<HTMLParagraphElement>();
+  const handle = useHandleNotices(entry.entryId, (action) => {
+    if (action === "send-now") onSent?.(entry.people);
+    else moveFocus("[data-send-now]");
+  });
   const isHeld = entry.state === "held";
   const recipients = [...new Set(entry.notices.map(({ recipientName }) => recipientName))].map(
     (name) => (name === ownName ? i18n.t("you") : name),
@@ -63,7 +71,7 @@ export function OutgoingNotice({
           `: ${kinds.map((kind) => withinSentence(findingWord(i18n, kind), i18n.locale)).join(", ")}`}
         .
       </p>
-      <p className="note-links">
+      <p className="note-links" ref={place}>
         <TextButton onClick={() => setIsLooking(true)}>{i18n.t("Look")}</TextButton>
         {!isHeld && (
           <TextButton
@@ -74,6 +82,7 @@ export function OutgoingNotice({
           </TextButton>
         )}
         <TextButton
+          data-send-now
           aria-disabled={handle.isPending || undefined}
           onClick={() => handle.isPending || handle.mutate("send-now")}
         >

@@ -15,11 +15,15 @@ export const noticeTextQuery = (id: string) =>
   });
 
 /** Holds back, or lets go at once, what an entry will tell. */
-export function useHandleNotices(entryId: string) {
+export function useHandleNotices(
+  entryId: string,
+  onHandled: (action: "hold" | "send-now") => void = () => undefined,
+) {
   const client = useQueryClient();
   return useMutation({
     mutationFn: (action: "hold" | "send-now") =>
       api.post(`/entries/${entryId}/notices/actions`, { body: { action }, schema: entryReply }),
+    onSuccess: (_entry, action) => onHandled(action),
     onSettled: () =>
       Promise.all([
         client.invalidateQueries({ queryKey: ["waiting"] }),

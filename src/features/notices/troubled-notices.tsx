@@ -13,24 +13,39 @@ import { useHandleNotices } from "./queries";
 export function TroubledNotices({
   notices,
   timeZoneOf,
+  onSent,
 }: {
   notices: readonly NoticeRow[];
   timeZoneOf: (notice: NoticeRow) => string;
+  onSent: (people: number) => void;
 }) {
   const { i18n } = useLingui();
   return (
     <MarginNote title={i18n.t("Notice not sent")}>
       {notices.map((notice) => (
-        <TroubledNotice key={notice.id} notice={notice} timeZone={timeZoneOf(notice)} />
+        <TroubledNotice
+          key={notice.id}
+          notice={notice}
+          timeZone={timeZoneOf(notice)}
+          onSent={() => onSent(1)}
+        />
       ))}
       <p>{i18n.t("Nothing is lost.")}</p>
     </MarginNote>
   );
 }
 
-function TroubledNotice({ notice, timeZone }: { notice: NoticeRow; timeZone: string }) {
+function TroubledNotice({
+  notice,
+  timeZone,
+  onSent,
+}: {
+  notice: NoticeRow;
+  timeZone: string;
+  onSent: () => void;
+}) {
   const { i18n } = useLingui();
-  const handle = useHandleNotices(notice.entryId);
+  const handle = useHandleNotices(notice.entryId, onSent);
   const [isLooking, setIsLooking] = useState(false);
   const values = {
     name: notice.recipientName,
@@ -41,10 +56,15 @@ function TroubledNotice({ notice, timeZone }: { notice: NoticeRow; timeZone: str
     <div className="troubled">
       <p>
         {notice.state === "possibly-sent"
-          ? i18n.t(
-              "{name}: possibly sent; the mail server did not answer. It is sent once more.",
-              values,
-            )
+          ? notice.tries > 1
+            ? i18n.t(
+                "{name}: possibly sent; twice the mail server did not answer. Ask whether it arrived.",
+                values,
+              )
+            : i18n.t(
+                "{name}: possibly sent; the mail server did not answer. It is sent once more.",
+                values,
+              )
           : notice.state === "failed"
             ? i18n.t(
                 "{name}: refused after {tries, plural, one {# try} other {# tries}}; it is not tried again. Tell them yourself.",

@@ -12,7 +12,8 @@ import type { RoleName } from "../../../shared/schemas/session";
 import { Button } from "../../components/button";
 import { Field } from "../../components/form";
 import { TextButton } from "../../components/link";
-import { ROLES, roleWord } from "./role-words";
+import { roleWord } from "../../lib/role-word";
+import { ROLES } from "./role-words";
 
 export interface Grant {
   role: RoleName;

@@ -1,6 +1,7 @@
 import type { I18n } from "@lingui/core";
 import type { RoleName } from "../../../shared/schemas/session";
 import type { UserView } from "../../../shared/schemas/user";
+import { roleWord } from "../../lib/role-word";
 
 export const ROLES: readonly RoleName[] = [
   "officer",
@@ -9,21 +10,6 @@ export const ROLES: readonly RoleName[] = [
   "auditor",
   "administrator",
 ];
-
-export function roleWord(i18n: I18n, role: RoleName): string {
-  switch (role) {
-    case "officer":
-      return i18n.t("Safety officer");
-    case "supervisor":
-      return i18n.t("Supervisor");
-    case "worker":
-      return i18n.t("Worker");
-    case "auditor":
-      return i18n.t("Auditor");
-    case "administrator":
-      return i18n.t("Administrator");
-  }
-}
 
 /** "Safety officer, Ostmere works". */
 export function grantWords(

@@ -1,6 +1,5 @@
 import { useLingui } from "@lingui/react";
-import { useMutation, useQueryClient } from "@tanstack/react-query";
-import { useState } from "react";
+import { useQueryClient } from "@tanstack/react-query";
 import type { z } from "zod";
 import { formatDate } from "../../../shared/format/date";
 import {
@@ -8,21 +7,10 @@ import {
   ProtectorDetail,
   type ProtectorRevisionInput,
 } from "../../../shared/schemas/protector";
-import type { ChangePreview } from "../../../shared/schemas/site";
-import { Button } from "../../components/button";
-import { ChangeReview, useChangePreview } from "../../components/change-preview";
-import {
-  Form,
-  FormActions,
-  SubmitButton,
-  showIssuesOn,
-  useSchemaForm,
-} from "../../components/form";
-import { FormProblem } from "../../components/form-problem";
-import { ApiError, api } from "../../lib/api";
-import { useChangeKey } from "../../lib/change-key";
+import { Form, showIssuesOn, useSchemaForm } from "../../components/form";
+import { LookActions, ReviewedChange, useReviewedChange } from "../../components/reviewed-change";
+import { ApiError } from "../../lib/api";
 import { useLocale } from "../../lib/i18n";
-import { paths } from "../../paths";
 import { ProtectorDataFields } from "./data-fields";
 import { protectorQueries } from "./queries";
 
@@ -56,11 +44,6 @@ export function ProtectorDataForm({
   const { i18n } = useLingui();
   const locale = useLocale();
   const client = useQueryClient();
-  const changeKey = useChangeKey();
-  const [reviewed, setReviewed] = useState<{
-    body: ProtectorRevisionInput;
-    preview: z.infer<typeof ChangePreview>;
-  } | null>(null);
   const { id: _, number: __, effectiveFrom: ___, ...data } = protector.data;
   const form = useSchemaForm(NewProtectorInput, {
     defaultValues: {
@@ -71,26 +54,14 @@ export function ProtectorDataForm({
     },
   });
   const show = showIssuesOn(form, i18n);
-  const preview = useChangePreview(`/protectors/${protector.id}/revisions/preview`, (error) =>
-    show(underData(error)),
-  );
-  const save = useMutation({
-    mutationFn: (body: ProtectorRevisionInput) =>
-      api.post(`/protectors/${protector.id}/revisions`, {
-        body,
-        schema: ProtectorDetail,
-        idempotencyKey: changeKey.keyFor(body),
-      }),
-    onSuccess: (view) => {
-      changeKey.forget();
+  const change = useReviewedChange<ProtectorRevisionInput, Detail>({
+    path: `/protectors/${protector.id}/revisions`,
+    schema: ProtectorDetail,
+    onError: (error) => show(underData(error)),
+    onSaved: (view) => {
       client.setQueryData(protectorQueries.one(view.id).queryKey, view);
       void client.invalidateQueries({ queryKey: protectorQueries.all });
-      void client.invalidateQueries({ queryKey: ["recompute-progress"] });
       onSaved();
-    },
-    onError: (error) => {
-      if (error instanceof ApiError && error.issues.length > 0) setReviewed(null);
-      show(underData(error));
     },
   });
   const look = form.handleSubmit(({ data: body }) => {
@@ -105,36 +76,22 @@ export function ProtectorDataForm({
       );
       return;
     }
-    preview.mutate(body, { onSuccess: (found) => setReviewed({ body, preview: found }) });
+    change.look(body);
   });
   return (
-    <>
-      <div hidden={reviewed !== null}>
-        <Form aria-label={i18n.t("New data")} onSubmit={look}>
-          <ProtectorDataFields form={form} needsReason />
-          <FormProblem error={preview.error} />
-          <FormActions>
-            <SubmitButton isBusy={preview.isPending}>
-              {i18n.t("See who changes verdict")}
-            </SubmitButton>
-            <Button onClick={onDone}>{i18n.t("Leave as it was")}</Button>
-          </FormActions>
-        </Form>
-      </div>
-      {reviewed && (
-        <ChangeReview
-          preview={reviewed.preview}
-          what={i18n.t("New data of {name} from {date} on.", {
-            name: protector.name,
-            date: formatDate(reviewed.body.effectiveFrom, locale),
-          })}
-          workerPath={paths.result}
-          isSaving={save.isPending}
-          error={save.error}
-          onSave={() => save.mutate(reviewed.body)}
-          onBack={() => setReviewed(null)}
-        />
-      )}
-    </>
+    <ReviewedChange
+      change={change}
+      what={({ effectiveFrom }) =>
+        i18n.t("New data of {name} from {date} on.", {
+          name: protector.name,
+          date: formatDate(effectiveFrom, locale),
+        })
+      }
+    >
+      <Form aria-label={i18n.t("New data")} onSubmit={look}>
+        <ProtectorDataFields form={form} needsReason />
+        <LookActions preview={change.preview} onLeave={onDone} />
+      </Form>
+    </ReviewedChange>
   );
 }

@@ -1,8 +1,7 @@
 import type { I18n } from "@lingui/core";
-import { SOURCES } from "../../../shared/acoustics/sources";
-import type { Working, WorkingValue } from "../../../shared/acoustics/working";
+import type { Working, WorkingTable, WorkingValue } from "../../../shared/acoustics/working";
 import type { Locale } from "../../../shared/i18n/index";
-import { mathText, workingText, workingValueText } from "./working-words";
+import { mathText, sourceText, workingText, workingValueText } from "./working-words";
 
 /** A text that a spreadsheet would take for a formula is marked as text; numbers never come here. */
 const guard = (text: string): string => (/^[=+\-@\t\r]/.test(text) ? `'${text}` : text);
@@ -68,12 +67,32 @@ export function workingCsv(
     ]);
   };
   const text = (value: string): WorkingValue => ({ kind: "name", name: value });
+  const addTable = (step: string, title: string, { title: of, columns, rows }: WorkingTable) => {
+    const about = of ? `${workingText(i18n, locale, of)}: ` : "";
+    const heads = columns.map((column) =>
+      [
+        column.title && workingText(i18n, locale, column.title),
+        column.symbol && mathText(i18n, locale, column.symbol),
+      ]
+        .filter(Boolean)
+        .join(" "),
+    );
+    for (const row of rows) {
+      const [first] = row.cells;
+      const name = first ? workingValueText(i18n, locale, first) : row.id;
+      row.cells.forEach((cell, index) => {
+        if (index > 0) add(step, title, "table", `${about}${name}`, heads[index] ?? "", cell);
+      });
+    }
+  };
   add("0", "", "rule set", "", "", text(`${working.governing.key}, ${working.governing.version}`));
   add("0", "", "method version", "", "", { kind: "number", number: working.methodVersion });
   add("0", "", "date", "", "", text(working.date));
   for (const line of working.lines) {
     const title = workingText(i18n, locale, line.title);
     add("0", title, "level", "", "", line.level);
+    if (line.level?.kind === "level" && line.level.bound)
+      add("0", title, "bound", "", "", text(line.level.bound));
     add("0", title, "uncertainty", "", "", line.uncertainty);
     add("0", title, "verdict", "", "", line.outcome);
     if (line.remark) add("0", title, "remark", "", "", { kind: "text", text: line.remark });
@@ -81,45 +100,26 @@ export function workingCsv(
   for (const step of working.steps) {
     const number = String(step.number);
     const title = workingText(i18n, locale, step.title);
-    for (const table of step.tables) {
-      const heads = table.columns.map((column) =>
-        [
-          column.title && workingText(i18n, locale, column.title),
-          column.symbol && mathText(i18n, locale, column.symbol),
-        ]
-          .filter(Boolean)
-          .join(" "),
-      );
-      for (const row of table.rows) {
-        const [first] = row.cells;
-        const name = first ? workingValueText(i18n, locale, first) : row.id;
-        row.cells.forEach((cell, index) => {
-          if (index > 0) add(number, title, "table", name, heads[index] ?? "", cell);
-        });
-      }
+    for (const { tables, equations } of [step, ...step.details]) {
+      for (const table of tables) addTable(number, title, table);
+      for (const { number: equation, label, parts } of equations)
+        add(
+          number,
+          title,
+          `equation ${equation}`,
+          label ? workingValueText(i18n, locale, label) : "",
+          "",
+          text(mathText(i18n, locale, parts)),
+        );
     }
-    for (const equation of step.equations)
-      add(
-        number,
-        title,
-        `equation ${equation.number}`,
-        "",
-        "",
-        text(mathText(i18n, locale, equation.parts)),
-      );
     for (const share of step.shares)
       add(number, title, "share", workingText(i18n, locale, share.label), "", {
         kind: "share",
         pct: share.pct,
       });
     for (const note of step.notes) add(number, title, "note", "", "", { kind: "text", text: note });
-    for (const source of step.sources) {
-      const cited =
-        source.id === null
-          ? source.clause
-          : `${SOURCES[source.id].title}, ${SOURCES[source.id].edition}, ${source.clause}`;
-      add(number, title, "source", "", "", text(cited));
-    }
+    for (const source of step.sources)
+      add(number, title, "source", "", "", text(sourceText(i18n, source)));
   }
   lines.push([workingId, "", "", "lines", "", "", String(lines.length - 1), "1"]);
   return `${lines.map((line) => line.map(field).join(",")).join("\r\n")}\r\n`;

@@ -1,9 +1,9 @@
 import { useLingui } from "@lingui/react";
-import type { ReactNode } from "react";
-import { SOURCES } from "../../../shared/acoustics/sources";
+import { Fragment, type ReactNode } from "react";
 import type {
   MathPart,
   Working,
+  WorkingEquation,
   WorkingStep,
   WorkingTable,
   WorkingValue,
@@ -23,7 +23,14 @@ import {
 import { ShareBar } from "../../components/share-bar";
 import { Verdict } from "../../components/verdict";
 import { useLocale } from "../../lib/i18n";
-import { isLimitAt, limitText, mathText, workingText, workingValueText } from "./working-words";
+import {
+  isLimitAt,
+  limitText,
+  mathText,
+  sourceTexts,
+  workingText,
+  workingValueText,
+} from "./working-words";
 
 const NUMERIC: ReadonlySet<WorkingValue["kind"]> = new Set([
   "level",
@@ -136,69 +143,136 @@ function Cell({ value, isBlank }: { value: WorkingValue | null; isBlank: boolean
   return isBlank ? null : "–";
 }
 
-function StepTable({ table, caption }: { table: WorkingTable; caption: string }) {
+function ColumnTitle({ column }: { column: WorkingTable["columns"][number] }) {
   const { i18n } = useLingui();
   const locale = useLocale();
   return (
-    <section
-      className="working-scroll"
-      aria-label={i18n.t("Table: {title}", { title: caption })}
-      // biome-ignore lint/a11y/noNoninteractiveTabindex: a table wider than its frame is scrolled by keys
-      tabIndex={0}
-    >
-      <table className="working-table">
-        <caption className="sr-only">{caption}</caption>
-        <thead>
-          <tr>
-            {table.columns.map((column) => (
-              <th key={column.id} scope="col" className={column.isNumeric ? "is-right" : undefined}>
-                {column.title && workingText(i18n, locale, column.title)}
-                {column.symbol && (
-                  <>
-                    {" "}
-                    <MathLine parts={column.symbol} />
-                  </>
-                )}
-                {!column.title && !column.symbol && (
-                  <span className="sr-only">{i18n.t("Remark")}</span>
-                )}
-              </th>
-            ))}
-          </tr>
-        </thead>
-        <tbody>
-          {table.rows.map((row) => (
-            <tr
-              key={row.id}
-              className={row.isTotal ? "is-total" : row.isEmphasized ? "is-emphasized" : undefined}
-            >
-              {row.cells.map((cell, index) => {
-                const column = table.columns[index];
-                const key = column?.id ?? index;
-                const isNumber =
-                  cell !== null &&
-                  (NUMERIC.has(cell.kind) || cell.kind === "list") &&
-                  column?.isNumeric;
-                const className = column?.isNumeric
-                  ? `is-right${isNumber || cell === null ? " mono" : ""}`
-                  : undefined;
-                const isBlank = !column?.isNumeric || row.isTotal;
-                return index === 0 ? (
-                  <th key={key} scope="row">
-                    <Cell value={cell} isBlank={isBlank} />
-                  </th>
-                ) : (
-                  <td key={key} className={className}>
-                    <Cell value={cell} isBlank={isBlank} />
-                  </td>
-                );
-              })}
-            </tr>
-          ))}
-        </tbody>
-      </table>
-    </section>
+    <>
+      {column.title && workingText(i18n, locale, column.title)}
+      {column.title && column.symbol && " "}
+      {column.symbol && <MathLine parts={column.symbol} />}
+    </>
   );
+}
+
+/** On a phone each row stands as a list of its cells, each with its column's name before it. */
+function StepTable({ table, caption }: { table: WorkingTable; caption: string }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const title = table.title && workingText(i18n, locale, table.title);
+  const name = title ? `${caption}: ${title}` : caption;
+  return (
+    <>
+      {title && <h3 className="working-table-title">{title}</h3>}
+      <section
+        className="working-scroll"
+        aria-label={i18n.t("Table: {title}", { title: name })}
+        // biome-ignore lint/a11y/noNoninteractiveTabindex: a table wider than its frame is scrolled by keys
+        tabIndex={0}
+      >
+        {/* Laid out as blocks on a phone a table loses its roles, so that they are said. */}
+        {/* biome-ignore-start lint/a11y/noRedundantRoles: see above */}
+        <table className="working-table" role="table">
+          <caption className="sr-only">{name}</caption>
+          <thead role="rowgroup">
+            <tr role="row">
+              {table.columns.map((column) => (
+                <th
+                  key={column.id}
+                  scope="col"
+                  role="columnheader"
+                  className={column.isNumeric ? "is-right" : undefined}
+                >
+                  {column.title || column.symbol ? (
+                    <ColumnTitle column={column} />
+                  ) : (
+                    <span className="sr-only">{i18n.t("Remark")}</span>
+                  )}
+                </th>
+              ))}
+            </tr>
+          </thead>
+          <tbody role="rowgroup">
+            {table.rows.map((row) => (
+              <tr
+                key={row.id}
+                role="row"
+                className={
+                  row.isTotal ? "is-total" : row.isEmphasized ? "is-emphasized" : undefined
+                }
+              >
+                {row.cells.map((cell, index) => {
+                  const column = table.columns[index];
+                  const key = column?.id ?? index;
+                  const isNumber =
+                    cell !== null &&
+                    (NUMERIC.has(cell.kind) || cell.kind === "list") &&
+                    column?.isNumeric;
+                  const isBlank = !column?.isNumeric || row.isTotal;
+                  const className = [
+                    column?.isNumeric && "is-right",
+                    column?.isNumeric && (isNumber || cell === null) && "mono",
+                    cell === null && isBlank && "is-blank",
+                    !column?.isNumeric && "is-prose",
+                  ]
+                    .filter(Boolean)
+                    .join(" ");
+                  return index === 0 ? (
+                    <th key={key} scope="row" role="rowheader">
+                      <Cell value={cell} isBlank={isBlank} />
+                    </th>
+                  ) : (
+                    <td key={key} role="cell" className={className || undefined}>
+                      {column && (column.title || column.symbol) && (
+                        <span className="cell-label" aria-hidden="true">
+                          <ColumnTitle column={column} />
+                        </span>
+                      )}
+                      <span className="cell-value">
+                        <Cell value={cell} isBlank={isBlank} />
+                      </span>
+                    </td>
+                  );
+                })}
+              </tr>
+            ))}
+          </tbody>
+        </table>
+        {/* biome-ignore-end lint/a11y/noRedundantRoles: see above */}
+      </section>
+    </>
+  );
+}
+
+function Tables({ tables, caption }: { tables: readonly WorkingTable[]; caption: string }) {
+  return tables.map((table) => (
+    <StepTable
+      key={`${table.title?.id ?? ""} ${table.columns.map((column) => column.id).join(" ")}`}
+      table={table}
+      caption={caption}
+    />
+  ));
+}
+
+/** What several equations in a row are about is said once. */
+function Equations({ equations }: { equations: readonly WorkingEquation[] }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const labelOf = (equation: WorkingEquation | undefined) =>
+    equation?.label ? workingValueText(i18n, locale, equation.label) : "";
+  return equations.map((equation, index) => {
+    const label = labelOf(equation);
+    return (
+      <Fragment key={equation.number}>
+        {label !== "" && label !== labelOf(equations[index - 1]) && (
+          <p className="equation-label">{label}</p>
+        )}
+        <Equation number={equation.number} spoken={mathText(i18n, locale, equation.parts)}>
+          <MathLine parts={equation.parts} />
+        </Equation>
+      </Fragment>
+    );
+  });
 }
 
 /** The three lines that head a working: the ear, the protector, the noise without it. Each is judged apart. */
@@ -255,22 +329,8 @@ export function WorkingStepView({ step, children }: { step: WorkingStep; childre
   const locale = useLocale();
   const title = workingText(i18n, locale, step.title);
   const id = `step-${step.number}`;
-  const tables = step.tables.map((table) => (
-    <StepTable
-      key={table.columns.map((column) => column.id).join(" ")}
-      table={table}
-      caption={title}
-    />
-  ));
-  const equations = step.equations.map((equation) => (
-    <Equation
-      key={equation.number}
-      number={equation.number}
-      spoken={mathText(i18n, locale, equation.parts)}
-    >
-      <MathLine parts={equation.parts} />
-    </Equation>
-  ));
+  const tables = <Tables tables={step.tables} caption={title} />;
+  const equations = <Equations equations={step.equations} />;
   const isUncertainty = step.shares.length > 0;
   return (
     <section className="working-step" aria-labelledby={id}>
@@ -299,6 +359,16 @@ export function WorkingStepView({ step, children }: { step: WorkingStep; childre
               {equations}
             </>
           )}
+          {step.details.map((detail) => {
+            const detailTitle = workingText(i18n, locale, detail.title);
+            return (
+              <details key={detail.id} className="working-detail">
+                <summary>{detailTitle}</summary>
+                <Tables tables={detail.tables} caption={detailTitle} />
+                <Equations equations={detail.equations} />
+              </details>
+            );
+          })}
           {step.notes.map((note) => (
             <p key={workingText(i18n, locale, note)} className="working-note">
               {workingText(i18n, locale, note)}
@@ -312,19 +382,7 @@ export function WorkingStepView({ step, children }: { step: WorkingStep; childre
       >
         {step.sources.length > 0 && (
           <p>
-            <b>{i18n.t("Source.")}</b>{" "}
-            {step.sources
-              .map(({ id: sourceId, clause }) => {
-                if (sourceId === null) return clause;
-                const source = SOURCES[sourceId];
-                const cited = [source.title, source.edition, clause].filter(Boolean).join(", ");
-                return source.status === "from-memory"
-                  ? i18n.t("{cited} (clause from memory)", { cited })
-                  : cited;
-              })
-              .filter(Boolean)
-              .join("; ")}
-            .
+            <b>{i18n.t("Source.")}</b> {sourceTexts(i18n, step.sources).join("; ")}.
           </p>
         )}
         {children}

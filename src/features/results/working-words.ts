@@ -1,6 +1,12 @@
 import type { I18n } from "@lingui/core";
+import { SOURCES } from "../../../shared/acoustics/sources";
 import type { AttenuationMethod } from "../../../shared/acoustics/types";
-import type { MathPart, WorkingText, WorkingValue } from "../../../shared/acoustics/working";
+import type {
+  MathPart,
+  WorkingSource,
+  WorkingText,
+  WorkingValue,
+} from "../../../shared/acoustics/working";
 import { reasonText } from "../../../shared/findings/reasons";
 import { formatDose, formatShare } from "../../../shared/format/dose";
 import { formatMinutes } from "../../../shared/format/duration";
@@ -61,6 +67,8 @@ export function workingText(i18n: I18n, locale: Locale, text: WorkingText): stri
   return i18n._(text.id, values);
 }
 
+const BOUND_SIGNS = { upper: "≤", lower: "≥" } as const;
+
 const SUPERSCRIPTS: Readonly<Record<string, string>> = {
   "-": "⁻",
   "0": "⁰",
@@ -81,7 +89,7 @@ const raised = (exponent: number): string =>
 export function workingValueText(i18n: I18n, locale: Locale, value: WorkingValue): string {
   switch (value.kind) {
     case "level":
-      return formatLevel(value.db, locale);
+      return formatLevel(value.db, locale, value.bound);
     case "difference":
       return formatNumber(value.db, 1, locale);
     case "minutes":
@@ -89,7 +97,7 @@ export function workingValueText(i18n: I18n, locale: Locale, value: WorkingValue
     case "share":
       return formatShare(value.pct, locale);
     case "dose":
-      return formatDose(value.pct, locale);
+      return `${value.bound ? BOUND_SIGNS[value.bound] : ""}${formatDose(value.pct, locale)}`;
     case "scientific": {
       const parts = scientificParts(value.number, locale);
       return parts ? `${parts.mantissa} × 10${raised(parts.exponent)}` : NO_FIGURE;
@@ -119,6 +127,29 @@ export function workingValueText(i18n: I18n, locale: Locale, value: WorkingValue
     case "math":
       return mathText(i18n, locale, value.parts);
   }
+}
+
+/** A document as it is cited, in the reader's language where its words have one; empty where nothing is to be cited. */
+export function sourceText(i18n: I18n, { id, clause }: WorkingSource): string {
+  const cited = clause === "" ? "" : i18n._(clause);
+  if (id === null) return cited;
+  const { title, edition, status } = SOURCES[id];
+  const whole = [i18n._(title), i18n._(edition), cited].filter(Boolean).join(", ");
+  return status === "from-memory"
+    ? i18n.t("{cited} (clause from memory)", { cited: whole })
+    : whole;
+}
+
+/** A step's documents; several clauses of one are cited together. */
+export function sourceTexts(i18n: I18n, sources: readonly WorkingSource[]): string[] {
+  const whole: WorkingSource[] = [];
+  for (const { id, clause } of sources) {
+    const translated = clause === "" ? "" : i18n._(clause);
+    const at = id === null ? -1 : whole.findIndex((source) => source.id === id);
+    if (at < 0) whole.push({ id, clause: translated });
+    else whole[at] = { id, clause: [whole[at]?.clause, translated].filter(Boolean).join(", ") };
+  }
+  return whole.flatMap((source) => sourceText(i18n, source) || []);
 }
 
 /** An equation as one line of text: what is read out, and what stands in the CSV. */

@@ -39,6 +39,7 @@ export function RuleSetTable({ ruleSet }: { ruleSet: RuleSetVersion }) {
           caption={i18n.t("Criteria of {title}", { title: i18n._(ruleSet.title) })}
           rows={ruleSet.criteria}
           rowKey={({ id }) => id}
+          stacksOnPhone
           columns={[
             {
               id: "criterion",

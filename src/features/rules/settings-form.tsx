@@ -1,31 +1,22 @@
 import { useLingui } from "@lingui/react";
-import { useMutation, useQueryClient } from "@tanstack/react-query";
-import { useState } from "react";
+import { useQueryClient } from "@tanstack/react-query";
 import { useController } from "react-hook-form";
-import type { z } from "zod";
 import type { RuleSetVersion } from "../../../shared/acoustics/types";
 import { formatDate } from "../../../shared/format/date";
-import { type ChangePreview, SiteSettingsInput, SiteView } from "../../../shared/schemas/site";
-import { Button } from "../../components/button";
-import { ChangeReview, useChangePreview } from "../../components/change-preview";
+import { SiteSettingsInput, SiteView } from "../../../shared/schemas/site";
 import {
   CheckField,
   DateField,
   Field,
   Form,
-  FormActions,
   NumberField,
   SelectField,
-  SubmitButton,
   showIssuesOn,
   TextAreaField,
   useSchemaForm,
 } from "../../components/form";
-import { FormProblem } from "../../components/form-problem";
-import { ApiError, api } from "../../lib/api";
-import { useChangeKey } from "../../lib/change-key";
+import { LookActions, ReviewedChange, useReviewedChange } from "../../components/reviewed-change";
 import { useLocale } from "../../lib/i18n";
-import { paths } from "../../paths";
 import { ruleQueries } from "./queries";
 import { ruleSetTitle } from "./settings-table";
 
@@ -85,11 +76,6 @@ export function SettingsForm({
   const { i18n } = useLingui();
   const locale = useLocale();
   const client = useQueryClient();
-  const changeKey = useChangeKey();
-  const [reviewed, setReviewed] = useState<{
-    body: SiteSettingsInput;
-    preview: z.infer<typeof ChangePreview>;
-  } | null>(null);
   const { governingRuleSet, comparisonRuleSets, wearFromDb, creditsActivePart, usesUncertainty } =
     site.settings;
   const form = useSchemaForm(SiteSettingsInput, {
@@ -103,105 +89,76 @@ export function SettingsForm({
       reason: "",
     },
   });
-  const show = showIssuesOn(form, i18n);
-  const preview = useChangePreview(`/sites/${site.id}/settings/preview`, show);
-  const save = useMutation({
-    mutationFn: (body: SiteSettingsInput) =>
-      api.post(`/sites/${site.id}/settings`, {
-        body,
-        schema: SiteView,
-        idempotencyKey: changeKey.keyFor(body),
-      }),
-    onSuccess: (view) => {
-      changeKey.forget();
+  const change = useReviewedChange<SiteSettingsInput, SiteView>({
+    path: `/sites/${site.id}/settings`,
+    schema: SiteView,
+    onError: showIssuesOn(form, i18n),
+    onSaved: (view) => {
       client.setQueryData(ruleQueries.site(view.id).queryKey, view);
       void client.invalidateQueries({ queryKey: ruleQueries.sites });
-      void client.invalidateQueries({ queryKey: ["recompute-progress"] });
       onSaved();
-    },
-    onError: (error) => {
-      if (error instanceof ApiError && error.issues.length > 0) setReviewed(null);
-      show(error);
     },
   });
   return (
-    <>
-      <div hidden={reviewed !== null}>
-        <Form
-          aria-label={i18n.t("New rules")}
-          onSubmit={form.handleSubmit((body) => {
-            const chosen = {
-              ...body,
-              comparisonRuleSets: body.comparisonRuleSets.filter(
-                (key) => key !== body.governingRuleSet,
-              ),
-            };
-            const { reason: _, ...facts } = chosen;
-            preview.mutate(facts, {
-              onSuccess: (found) => setReviewed({ body: chosen, preview: found }),
-            });
-          })}
-        >
-          <SelectField
-            form={form}
-            name="governingRuleSet"
-            label={i18n.t("Governs")}
-            choices={ruleSets.map(({ key, title }) => ({ value: key, label: i18n._(title) }))}
-            note={i18n.t("Findings come from the governing rule set only.")}
-          />
-          <ComparisonField form={form} ruleSets={ruleSets} />
-          <NumberField
-            form={form}
-            name="wearFromDb"
-            label={i18n.t("Worn from")}
-            unit="dB(A)"
-            note={i18n.t(
-              "A protector counts as worn in tasks of this level or more, and in a zone.",
-            )}
-          />
-          <CheckField
-            form={form}
-            name="usesUncertainty"
-            label={i18n.t("Uncertainty")}
-            text={i18n.t("Verdicts take the uncertainty of ISO 9612 into account")}
-          />
-          <CheckField
-            form={form}
-            name="creditsActivePart"
-            label={i18n.t("Active part")}
-            text={i18n.t("It counts for limits, for workers with a passed active check")}
-          />
-          <DateField
-            form={form}
-            name="effectiveFrom"
-            label={i18n.t("From")}
-            note={i18n.t("Days from this date on are judged anew. Both judgements are kept.")}
-          />
-          <TextAreaField form={form} name="reason" label={i18n.t("Reason")} rows={2} />
-          <FormProblem error={preview.error} />
-          <FormActions>
-            <SubmitButton isBusy={preview.isPending}>
-              {i18n.t("See who changes verdict")}
-            </SubmitButton>
-            <Button onClick={onLeave}>{i18n.t("Leave as it was")}</Button>
-          </FormActions>
-        </Form>
-      </div>
-      {reviewed && (
-        <ChangeReview
-          preview={reviewed.preview}
-          what={i18n.t("{ruleSet} governs {site} from {date} on.", {
-            ruleSet: ruleSetTitle(i18n, ruleSets, reviewed.body.governingRuleSet),
-            site: site.name,
-            date: formatDate(reviewed.body.effectiveFrom, locale),
-          })}
-          workerPath={paths.result}
-          isSaving={save.isPending}
-          error={save.error}
-          onSave={() => save.mutate(reviewed.body)}
-          onBack={() => setReviewed(null)}
+    <ReviewedChange
+      change={change}
+      what={(body) =>
+        i18n.t("{ruleSet} governs {site} from {date} on.", {
+          ruleSet: ruleSetTitle(i18n, ruleSets, body.governingRuleSet),
+          site: site.name,
+          date: formatDate(body.effectiveFrom, locale),
+        })
+      }
+    >
+      <Form
+        aria-label={i18n.t("New rules")}
+        onSubmit={form.handleSubmit((body) => {
+          const chosen = {
+            ...body,
+            comparisonRuleSets: body.comparisonRuleSets.filter(
+              (key) => key !== body.governingRuleSet,
+            ),
+          };
+          const { reason: _, ...facts } = chosen;
+          change.look(chosen, facts);
+        })}
+      >
+        <SelectField
+          form={form}
+          name="governingRuleSet"
+          label={i18n.t("Governs")}
+          choices={ruleSets.map(({ key, title }) => ({ value: key, label: i18n._(title) }))}
+          note={i18n.t("Findings come from the governing rule set only.")}
         />
-      )}
-    </>
+        <ComparisonField form={form} ruleSets={ruleSets} />
+        <NumberField
+          form={form}
+          name="wearFromDb"
+          label={i18n.t("Worn from")}
+          unit="dB(A)"
+          note={i18n.t("A protector counts as worn in tasks of this level or more, and in a zone.")}
+        />
+        <CheckField
+          form={form}
+          name="usesUncertainty"
+          label={i18n.t("Uncertainty")}
+          text={i18n.t("Verdicts take the uncertainty of ISO 9612 into account")}
+        />
+        <CheckField
+          form={form}
+          name="creditsActivePart"
+          label={i18n.t("Active part")}
+          text={i18n.t("It counts for limits, for workers with a passed active check")}
+        />
+        <DateField
+          form={form}
+          name="effectiveFrom"
+          label={i18n.t("From")}
+          note={i18n.t("Days from this date on are judged anew. Both judgements are kept.")}
+        />
+        <TextAreaField form={form} name="reason" label={i18n.t("Reason")} rows={2} />
+        <LookActions preview={change.preview} onLeave={onLeave} />
+      </Form>
+    </ReviewedChange>
   );
 }

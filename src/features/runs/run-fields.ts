@@ -1,12 +1,8 @@
 import { z } from "zod";
 import { Reason } from "../../../shared/schemas/common";
 import { Settings, Weighting } from "../../../shared/schemas/evaluation";
-import {
-  FIELD_CHECK_TOLERANCE_DB,
-  RunCorrection,
-  RunInput,
-  type RunView,
-} from "../../../shared/schemas/run";
+import { RunCorrection, RunInput, type RunView } from "../../../shared/schemas/run";
+import { fieldCheckDriftDb, isWithinTolerance } from "../../../shared/schemas/run-doubts";
 
 const figure = z.number().nullable();
 
@@ -128,8 +124,10 @@ export const valuesOfRun = (run: RunView): RunFormValues => ({
   reason: null,
 });
 
+const asNumber = (value: unknown): number | null => (typeof value === "number" ? value : null);
+
 export const driftDb = (before: unknown, after: unknown): number | null =>
-  typeof before === "number" && typeof after === "number" ? Math.abs(after - before) : null;
+  fieldCheckDriftDb(asNumber(before), asNumber(after));
 
 export const isDriftTooLarge = (drift: number | null): boolean =>
-  drift !== null && drift > FIELD_CHECK_TOLERANCE_DB + 1e-9;
+  drift !== null && !isWithinTolerance(drift);

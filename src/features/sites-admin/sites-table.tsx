@@ -58,6 +58,7 @@ export function SitesTable({
       columns={columns}
       rows={sites}
       rowKey={({ id }) => id}
+      stacksOnPhone
       state={state}
       error={error}
       onRetry={onRetry}

@@ -1,40 +1,31 @@
 import { useLingui } from "@lingui/react";
-import { useMutation, useQueryClient } from "@tanstack/react-query";
-import { useState } from "react";
+import { useQueryClient } from "@tanstack/react-query";
 import { get, type UseFormReturn } from "react-hook-form";
 import type { z } from "zod";
 import { formatDate } from "../../../shared/format/date";
 import { formatLevel } from "../../../shared/format/level";
 import { GradeName, InstrumentClassName } from "../../../shared/schemas/evaluation";
-import type { ChangePreview } from "../../../shared/schemas/site";
 import { TaskDetail, TaskLevelInput, type TaskLevelView } from "../../../shared/schemas/task";
 import { BandFields } from "../../components/band-fields";
-import { Button } from "../../components/button";
-import { ChangeReview, useChangePreview } from "../../components/change-preview";
 import {
   DateField,
   Field,
   Form,
-  FormActions,
   NumberField,
   SelectField,
-  SubmitButton,
   showIssuesOn,
   TextAreaField,
   useSchemaForm,
 } from "../../components/form";
-import { FormProblem } from "../../components/form-problem";
 import {
   COMMON_SETTINGS,
   SettingsInput,
   type TypedSettings,
 } from "../../components/meter-settings";
 import { NumberInput } from "../../components/number-input";
-import { ApiError, api } from "../../lib/api";
-import { useChangeKey } from "../../lib/change-key";
+import { LookActions, ReviewedChange, useReviewedChange } from "../../components/reviewed-change";
 import { useLocale } from "../../lib/i18n";
 import { gradeWord, instrumentClassWord } from "../../lib/register-words";
-import { paths } from "../../paths";
 import { taskQueries } from "./queries";
 import { SamplesField } from "./samples-field";
 
@@ -195,32 +186,16 @@ export function LevelForm({
   const { i18n } = useLingui();
   const locale = useLocale();
   const client = useQueryClient();
-  const changeKey = useChangeKey();
-  const [reviewed, setReviewed] = useState<{
-    body: TaskLevelInput;
-    preview: z.infer<typeof ChangePreview>;
-  } | null>(null);
   const form = useSchemaForm(TaskLevelInput, { defaultValues: startFrom(from, effectiveFrom) });
-  const show = showIssuesOn(form, i18n);
   const isFirst = task.levels.length === 0;
-  const preview = useChangePreview(`/tasks/${task.id}/levels/preview`, show);
-  const save = useMutation({
-    mutationFn: (body: TaskLevelInput) =>
-      api.post(`/tasks/${task.id}/levels`, {
-        body,
-        schema: TaskDetail,
-        idempotencyKey: changeKey.keyFor(body),
-      }),
-    onSuccess: (view) => {
-      changeKey.forget();
+  const change = useReviewedChange<TaskLevelInput, Detail>({
+    path: `/tasks/${task.id}/levels`,
+    schema: TaskDetail,
+    onError: showIssuesOn(form, i18n),
+    onSaved: (view) => {
       client.setQueryData(taskQueries.one(view.id).queryKey, view);
       void client.invalidateQueries({ queryKey: taskQueries.all });
-      void client.invalidateQueries({ queryKey: ["recompute-progress"] });
       onSaved();
-    },
-    onError: (error) => {
-      if (error instanceof ApiError && error.issues.length > 0) setReviewed(null);
-      show(error);
     },
   });
   const look = form.handleSubmit((body) => {
@@ -235,107 +210,91 @@ export function LevelForm({
       );
       return;
     }
-    preview.mutate(body, { onSuccess: (found) => setReviewed({ body, preview: found }) });
+    change.look(body);
   });
   return (
-    <>
-      <div hidden={reviewed !== null}>
-        <Form aria-label={i18n.t("Level")} onSubmit={look}>
-          <MetricField form={form} />
-          <NumberField
-            form={form}
-            name="levelDb"
-            label={i18n.t("Level")}
-            unit="dB(A)"
-            note={i18n.t("20 to 160.")}
-          />
-          <SelectField
-            form={form}
-            name="grade"
-            label={i18n.t("Grade")}
-            choices={GradeName.options
-              .filter((grade) => grade !== "measured-worker")
-              .map((grade) => ({ value: grade, label: gradeWord(i18n, grade) }))}
-          />
-          <NumberField
-            form={form}
-            name="lcMinusLaDb"
-            label={i18n.t("LC − LA")}
-            unit="dB"
-            isOptional
-            note={i18n.t("Where there is no spectrum; SNR and HML need it.")}
-          />
-          <BandFields
-            form={form}
-            name="octaveBandsDb"
-            label={i18n.t("Octave bands, dB")}
-            rows={[{ label: i18n.t("Octave band level") }]}
-            note={i18n.t(
-              "Unweighted. 63 Hz may stay empty. Eight values can be pasted into any cell.",
-            )}
-          />
-          <NumberField
-            form={form}
-            name="lasMaxDb"
-            label={i18n.t("Slow maximum, LASmax")}
-            unit="dB(A)"
-            isOptional
-          />
-          <PeakField form={form} />
-          <SamplesField form={form} />
-          <SelectField
-            form={form}
-            name="instrument"
-            label={i18n.t("Measured with")}
-            emptyLabel={i18n.t("Not stated")}
-            isOptional
-            choices={InstrumentClassName.options.map((instrument) => ({
-              value: instrument,
-              label: instrumentClassWord(i18n, instrument),
-            }))}
-          />
-          <TextAreaField
-            form={form}
-            name="sourceNote"
-            label={i18n.t("Where it comes from")}
-            rows={2}
-            isOptional
-          />
-          <DateField
-            form={form}
-            name="effectiveFrom"
-            label={i18n.t("Holds from")}
-            note={i18n.t(
-              "The date of a level that is there corrects that one; all its days are judged again.",
-            )}
-          />
-          {!isFirst && (
-            <TextAreaField form={form} name="reason" label={i18n.t("Reason")} rows={2} />
-          )}
-          <FormProblem error={preview.error} />
-          <FormActions>
-            <SubmitButton isBusy={preview.isPending}>
-              {i18n.t("See who changes verdict")}
-            </SubmitButton>
-            <Button onClick={onLeave}>{i18n.t("Leave as it was")}</Button>
-          </FormActions>
-        </Form>
-      </div>
-      {reviewed && (
-        <ChangeReview
-          preview={reviewed.preview}
-          what={i18n.t("{task}: {level} dB(A) from {date} on.", {
-            task: task.name,
-            level: formatLevel(reviewed.body.levelDb, locale),
-            date: formatDate(reviewed.body.effectiveFrom, locale),
-          })}
-          workerPath={paths.result}
-          isSaving={save.isPending}
-          error={save.error}
-          onSave={() => save.mutate(reviewed.body)}
-          onBack={() => setReviewed(null)}
+    <ReviewedChange
+      change={change}
+      what={(body) =>
+        i18n.t("{task}: {level} dB(A) from {date} on.", {
+          task: task.name,
+          level: formatLevel(body.levelDb, locale),
+          date: formatDate(body.effectiveFrom, locale),
+        })
+      }
+    >
+      <Form aria-label={i18n.t("Level")} onSubmit={look}>
+        <MetricField form={form} />
+        <NumberField
+          form={form}
+          name="levelDb"
+          label={i18n.t("Level")}
+          unit="dB(A)"
+          note={i18n.t("20 to 160.")}
         />
-      )}
-    </>
+        <SelectField
+          form={form}
+          name="grade"
+          label={i18n.t("Grade")}
+          choices={GradeName.options
+            .filter((grade) => grade !== "measured-worker")
+            .map((grade) => ({ value: grade, label: gradeWord(i18n, grade) }))}
+        />
+        <NumberField
+          form={form}
+          name="lcMinusLaDb"
+          label={i18n.t("LC − LA")}
+          unit="dB"
+          isOptional
+          note={i18n.t("Where there is no spectrum; SNR and HML need it.")}
+        />
+        <BandFields
+          form={form}
+          name="octaveBandsDb"
+          label={i18n.t("Octave bands, dB")}
+          rows={[{ label: i18n.t("Octave band level") }]}
+          note={i18n.t(
+            "Unweighted. 63 Hz may stay empty. Eight values can be pasted into any cell.",
+          )}
+        />
+        <NumberField
+          form={form}
+          name="lasMaxDb"
+          label={i18n.t("Slow maximum, LASmax")}
+          unit="dB(A)"
+          isOptional
+        />
+        <PeakField form={form} />
+        <SamplesField form={form} />
+        <SelectField
+          form={form}
+          name="instrument"
+          label={i18n.t("Measured with")}
+          emptyLabel={i18n.t("Not stated")}
+          isOptional
+          choices={InstrumentClassName.options.map((instrument) => ({
+            value: instrument,
+            label: instrumentClassWord(i18n, instrument),
+          }))}
+        />
+        <TextAreaField
+          form={form}
+          name="sourceNote"
+          label={i18n.t("Where it comes from")}
+          rows={2}
+          isOptional
+        />
+        <DateField
+          form={form}
+          name="effectiveFrom"
+          label={i18n.t("Holds from")}
+          note={i18n.t(
+            "The date of a level that is there corrects that one; all its days are judged again.",
+          )}
+        />
+        {!isFirst && <TextAreaField form={form} name="reason" label={i18n.t("Reason")} rows={2} />}
+        <LookActions preview={change.preview} onLeave={onLeave} />
+      </Form>
+    </ReviewedChange>
   );
 }

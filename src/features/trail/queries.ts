@@ -15,7 +15,7 @@ export const trailQuery = (filter: TrailFilter) =>
     queryFn: ({ signal, pageParam }) =>
       api.get("/audit-events", {
         query: { ...filter, cursor: pageParam },
-        schema: ownReply<z.infer<typeof AuditEventPage>>("rows", "next"),
+        schema: ownReply<z.infer<typeof AuditEventPage>>("rows", "next", "names"),
         signal,
       }),
     initialPageParam: null as string | null,

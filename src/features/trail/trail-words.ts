@@ -15,6 +15,7 @@ export const SUBJECT_KINDS = [
   "area",
   "task",
   "job",
+  "file",
 ] as const;
 export type SubjectKind = (typeof SUBJECT_KINDS)[number];
 
@@ -49,6 +50,8 @@ export function subjectWord(i18n: I18n, kind: string): string {
       return i18n.t("Task");
     case "job":
       return i18n.t("Job");
+    case "file":
+      return i18n.t("File");
     default:
       return kind;
   }
@@ -89,6 +92,19 @@ export function actionWord(i18n: I18n, action: string): string {
       return i18n.t("Own language chosen");
     case "export-year":
       return i18n.t("Year file taken");
+    case "start-outing":
+      return i18n.t("Sent out");
+    case "end-outing":
+      return i18n.t("Came back");
+    case "discard-outing":
+      return i18n.t("Came back, run discarded");
+    case "undo-outing":
+      return i18n.t("Never went out");
+    case "record-calibration":
+      return i18n.t("Calibration recorded");
+    case "upload-file":
+      return i18n.t("File sent");
+    case "record-sample":
     case "record-shift":
     case "record-run":
       return i18n.t("Recorded");

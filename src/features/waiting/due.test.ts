@@ -1,7 +1,7 @@
 import { expect, test } from "vitest";
 import { FindingRow } from "../../../shared/schemas/finding";
 import { CrewProgress } from "../../../shared/schemas/waiting";
-import { crewMoment, placeFinding, placeFindings } from "./due";
+import { crewMoment, groupOf, placeFindings } from "./due";
 
 const id = (last: number) => `00000000-0000-4000-8000-${String(last).padStart(12, "0")}`;
 const today = "2026-12-01";
@@ -18,6 +18,7 @@ const finding = (overrides: Partial<FindingRow> = {}): FindingRow =>
     lastDate: "2026-11-30",
     daysCount: 1,
     dueOn: today,
+    rulesUntil: null,
     siteId: id(90),
     worker: { id: id(50), name: "R. Szabó", employeeNumber: "3425" },
     subjectName: null,
@@ -50,54 +51,62 @@ test("a crew is ahead of, in or past its shift by its own clock", () => {
 });
 
 test.each([
-  ["05:00", { kind: "time", time: "06:00" }],
-  ["09:00", { kind: "now" }],
-  ["15:00", { kind: "day", date: "2026-12-02", isLate: false }],
-])("what keeps a worker out of noise is due before the next time in it: at %s", (nowTime, due) => {
-  expect(placeFinding(finding(), crew, today, nowTime)).toEqual({ group: "before-noise", due });
+  ["no-protector", "new", today, "before-noise"],
+  // Its date is the one that stands on its own page: what is past comes before all else.
+  ["no-protector", "new", "2026-11-30", "overdue"],
+  ["no-protector", "in-hand", "2026-12-04", "this-week"],
+  ["not-worn-long-enough", "new", today, "today"],
+  ["not-worn-long-enough", "new", "2026-11-28", "overdue"],
+  ["protects-too-much", "new", "2026-12-20", "later"],
+  ["reading-missing", "new", null, "later"],
+] as const)("%s, %s, due %s: %s", (kind, state, dueOn, group) => {
+  expect(groupOf(finding({ kind, state, dueOn }), today)).toBe(group);
 });
 
-test("a later date that an officer has set counts instead", () => {
-  const planned = finding({ state: "in-hand", dueOn: "2026-12-04" });
-  expect(placeFinding(planned, crew, today, "09:00")).toEqual({
-    group: "this-week",
-    due: { kind: "day", date: "2026-12-04", isLate: false },
-  });
+test("overdue stands first, the longest of it at the top", () => {
+  const other = (last: number, overrides: Partial<FindingRow>) =>
+    finding({
+      id: id(last),
+      worker: { id: id(50 + last), name: "D. Tavernor", employeeNumber: "4417" },
+      ...overrides,
+    });
+  const { items } = placeFindings(
+    [
+      other(2, { kind: "no-protector", dueOn: today }),
+      other(3, { kind: "reading-gap", dueOn: "2026-11-29" }),
+      other(4, { kind: "wearing-unknown", dueOn: "2026-11-20" }),
+    ],
+    () => today,
+  );
+  expect(items.map((item) => [item.finding.id, item.group])).toEqual([
+    [id(4), "overdue"],
+    [id(3), "overdue"],
+    [id(2), "before-noise"],
+  ]);
 });
 
-test("what is due today ends with the shift; what was due before is late", () => {
-  const short = finding({ kind: "not-worn-long-enough" });
-  expect(placeFinding(short, crew, today, "09:00")).toEqual({
-    group: "before-shift-ends",
-    due: { kind: "time", time: "14:00" },
-  });
-  const late = finding({ kind: "not-worn-long-enough", dueOn: "2026-11-28" });
-  expect(placeFinding(late, crew, today, "09:00")).toEqual({
-    group: "before-shift-ends",
-    due: { kind: "day", date: "2026-11-28", isLate: true },
-  });
-});
-
-test("later, and without a date", () => {
-  expect(
-    placeFinding(finding({ kind: "protects-too-much", dueOn: "2026-12-20" }), crew, today, "09:00")
-      .group,
-  ).toBe("later");
-  expect(
-    placeFinding(finding({ kind: "reading-missing", dueOn: null }), null, today, "09:00"),
-  ).toEqual({ group: "later", due: { kind: "none" } });
-});
-
-test("over the limit stands on the row of what explains it, and alone where nothing does", () => {
-  const over = finding({ id: id(2), kind: "over-limit-at-ear" });
+test("what one order answers stands on one row, read from the latest day", () => {
+  const over = finding({ id: id(2), kind: "over-limit-at-ear", lastDate: "2026-11-27" });
+  const gap = finding({ id: id(4), kind: "reading-gap" });
   const other = finding({
     id: id(3),
     kind: "over-limit-at-ear",
     worker: { id: id(51), name: "D. Tavernor", employeeNumber: "4417" },
   });
-  const items = placeFindings([over, finding(), other], [crew], today, () => "09:00");
-  expect(items.map((item) => [item.finding.id, item.also?.id ?? null])).toEqual([
-    [id(1), id(2)],
-    [id(3), null],
+  const { items } = placeFindings([over, finding(), gap, other], () => today);
+  expect(items.map((item) => [item.finding.id, item.also.map((one) => one.id)])).toEqual([
+    [id(1), [id(2)]],
+    [id(3), []],
+    [id(4), []],
   ]);
+});
+
+test("an order that is marked as done asks for nothing until a later day does", () => {
+  const done = finding({ state: "done" });
+  const over = finding({ id: id(2), kind: "over-limit-at-ear" });
+  const first = placeFindings([done, over], () => today);
+  expect(first.items).toEqual([]);
+  expect(first.toBeChecked.map((one) => [one.finding.id, one.also.length])).toEqual([[id(1), 1]]);
+  const later = placeFindings([done, { ...over, lastDate: "2026-12-01" }], () => today);
+  expect(later.items.map((item) => item.finding.id)).toEqual([id(2)]);
 });

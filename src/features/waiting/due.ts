@@ -1,9 +1,10 @@
+import { foldOrders } from "../../../shared/findings/orders";
 import type { FindingKind, FindingRow } from "../../../shared/schemas/finding";
 import type { CrewProgress } from "../../../shared/schemas/waiting";
 import { addDays } from "../../../shared/time/zone";
 
 /** By when something has to be done; the order is that of the page. */
-export const DUE_GROUPS = ["before-noise", "before-shift-ends", "this-week", "later"] as const;
+export const DUE_GROUPS = ["overdue", "before-noise", "today", "this-week", "later"] as const;
 export type DueGroup = (typeof DUE_GROUPS)[number];
 
 /** Where nobody should go back into noise as things stand. */
@@ -14,27 +15,12 @@ const BEFORE_NOISE: ReadonlySet<FindingKind> = new Set([
   "dual-protection",
 ]);
 
-export type Due =
-  | { readonly kind: "now" }
-  | { readonly kind: "time"; readonly time: string }
-  | { readonly kind: "day"; readonly date: string; readonly isLate: boolean }
-  | { readonly kind: "none" };
-
 export interface WaitingItem {
   readonly finding: FindingRow;
   readonly group: DueGroup;
-  readonly due: Due;
-  readonly crew: CrewProgress | null;
-  /** The same worker's over the limit, where this finding is the reason for it: one thing to do, one row. */
-  readonly also: FindingRow | null;
+  /** What the same order answers: one thing to do, one row. */
+  readonly also: readonly FindingRow[];
 }
-
-/** What explains that the limit is passed at the ear. */
-const EXPLAINS_OVER: ReadonlySet<FindingKind> = new Set([
-  "no-protector",
-  "protects-too-little",
-  "dual-protection",
-]);
 
 const minutesOf = (time: string): number =>
   Number(time.slice(0, 2)) * 60 + Number(time.slice(3, 5));
@@ -57,42 +43,22 @@ export function crewMoment(
 export const crewEnd = ({ start, lengthMin }: Pick<CrewProgress, "start" | "lengthMin">): string =>
   timeOf(minutesOf(start) + lengthMin);
 
-/**
- * A finding by when it has to be done. A date that an officer has set counts; else what keeps a worker out of noise comes
- * before the next time in noise, what is due today before the shift ends.
- */
-export function placeFinding(
-  finding: FindingRow,
-  crew: CrewProgress | null,
+/** Nobody has said that it can wait: it comes before the worker's next time in noise. */
+export const isBeforeNoise = (
+  { kind, state, dueOn }: Pick<FindingRow, "kind" | "state" | "dueOn">,
   today: string,
-  nowTime: string,
-): Pick<WaitingItem, "group" | "due"> {
-  const { dueOn, kind, state } = finding;
-  const isPlanned = state === "in-hand" && dueOn !== null && dueOn > today;
-  if (BEFORE_NOISE.has(kind) && !isPlanned) {
-    if (!crew) return { group: "before-noise", due: dayDue(dueOn, today) };
-    const moment = crewMoment(crew, nowTime);
-    const due: Due =
-      moment === "running"
-        ? { kind: "now" }
-        : moment === "ahead"
-          ? { kind: "time", time: crew.start }
-          : { kind: "day", date: addDays(today, 1), isLate: false };
-    return { group: "before-noise", due };
-  }
-  if (dueOn !== null && dueOn <= today) {
-    const isToday = dueOn === today && crew !== null && crewMoment(crew, nowTime) !== "over";
-    return {
-      group: "before-shift-ends",
-      due: isToday ? { kind: "time", time: crewEnd(crew) } : dayDue(dueOn, today),
-    };
-  }
-  const isThisWeek = dueOn !== null && dueOn <= addDays(today, 7);
-  return { group: isThisWeek ? "this-week" : "later", due: dayDue(dueOn, today) };
-}
+): boolean => BEFORE_NOISE.has(kind) && !(state === "in-hand" && dueOn !== null && dueOn > today);
 
-function dayDue(dueOn: string | null, today: string): Due {
-  return dueOn === null ? { kind: "none" } : { kind: "day", date: dueOn, isLate: dueOn < today };
+/** A finding by its date: what is past it stands first of all. */
+export function groupOf(
+  finding: Pick<FindingRow, "kind" | "state" | "dueOn">,
+  today: string,
+): DueGroup {
+  const { dueOn } = finding;
+  if (dueOn !== null && dueOn < today) return "overdue";
+  if (isBeforeNoise(finding, today)) return "before-noise";
+  if (dueOn === today) return "today";
+  return dueOn !== null && dueOn <= addDays(today, 7) ? "this-week" : "later";
 }
 
 /** How far over at the ear: what sorts people. */
@@ -104,42 +70,36 @@ const overBy = ({ figures }: FindingRow): number => {
   return rank + figures.atEarDb;
 };
 
+export interface Placed {
+  readonly items: readonly WaitingItem[];
+  /** Done as far as the supervisor is concerned. */
+  readonly toBeChecked: readonly Pick<WaitingItem, "finding" | "also">[];
+}
+
+/** Everything that is open, one row for each order, the most urgent first. */
 export function placeFindings(
   findings: readonly FindingRow[],
-  crews: readonly CrewProgress[],
-  today: string,
-  nowTimeAt: (siteId: string) => string,
-): WaitingItem[] {
-  const overOf = new Map(
-    findings.flatMap((finding) =>
-      finding.kind === "over-limit-at-ear" && finding.worker
-        ? [[finding.worker.id, finding] as const]
-        : [],
-    ),
-  );
-  const folded = new Set<string>();
-  const items = findings.map((finding): WaitingItem => {
-    const crew =
-      crews.find(({ name, siteId }) => name === finding.crewName && siteId === finding.siteId) ??
-      null;
-    const placed = placeFinding(finding, crew, today, nowTimeAt(finding.siteId));
-    const over =
-      finding.worker && EXPLAINS_OVER.has(finding.kind) ? overOf.get(finding.worker.id) : undefined;
-    const isSame =
-      over &&
-      !folded.has(over.id) &&
-      placeFinding(over, crew, today, nowTimeAt(over.siteId)).group === placed.group;
-    if (isSame) folded.add(over.id);
-    return { finding, crew, also: isSame ? over : null, ...placed };
-  });
-  return items
-    .filter(({ finding }) => !folded.has(finding.id))
-    .toSorted(
-      (a, b) =>
-        DUE_GROUPS.indexOf(a.group) - DUE_GROUPS.indexOf(b.group) ||
-        (a.group === "before-noise"
-          ? 0
-          : (a.finding.dueOn ?? "9999").localeCompare(b.finding.dueOn ?? "9999")) ||
-        overBy(b.finding) - overBy(a.finding),
-    );
+  todayAt: (siteId: string) => string,
+): Placed {
+  const bySubject = new Map<string, FindingRow[]>();
+  for (const finding of findings) {
+    const subject = finding.worker?.id ?? finding.id;
+    bySubject.set(subject, [...(bySubject.get(subject) ?? []), finding]);
+  }
+  const open = [...bySubject.values()]
+    .flatMap((own) => foldOrders(own))
+    .map(({ lead, also }) => ({ finding: lead, also }));
+  const dueOf = ({ finding }: WaitingItem) => finding.dueOn ?? "9999";
+  return {
+    items: open
+      .filter(({ finding }) => finding.state !== "done")
+      .map((one) => ({ ...one, group: groupOf(one.finding, todayAt(one.finding.siteId)) }))
+      .toSorted(
+        (a, b) =>
+          DUE_GROUPS.indexOf(a.group) - DUE_GROUPS.indexOf(b.group) ||
+          dueOf(a).localeCompare(dueOf(b)) ||
+          overBy(b.finding) - overBy(a.finding),
+      ),
+    toBeChecked: open.filter(({ finding }) => finding.state === "done"),
+  };
 }

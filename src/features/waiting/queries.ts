@@ -5,6 +5,7 @@ import { ownReply } from "../../lib/own-reply";
 
 const waitingReply = ownReply<WaitingView>(
   "today",
+  "ruleSets",
   "crews",
   "findings",
   "toBeChecked",

@@ -1,13 +1,10 @@
 import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { type ReactNode, useMemo } from "react";
-import { remedyOf } from "../../../shared/findings/facts";
-import { noticedSentence, orderSentence, remedyFigure } from "../../../shared/findings/sentences";
+import { handoutsOf, remedyOf } from "../../../shared/findings/facts";
 import { findingStateWord, findingWord } from "../../../shared/findings/words";
-import { formatDayMonth, formatWeekday } from "../../../shared/format/date";
 import { withinSentence } from "../../../shared/format/words";
 import type { FindingRow } from "../../../shared/schemas/finding";
-import { addDays } from "../../../shared/time/zone";
 import { type DataColumn, DataTable } from "../../components/data-table";
 import {
   AtEarFigure,
@@ -17,18 +14,21 @@ import {
   TableStripScale,
   useTableFrame,
 } from "../../components/day-figures";
+import { FindingDue } from "../../components/finding-due";
+import { FindingWords } from "../../components/finding-words";
 import { TextLink } from "../../components/link";
-import { protectorWordText } from "../../components/protector-word";
 import { useLocale } from "../../lib/i18n";
 import { paths } from "../../paths";
-import type { Due, DueGroup, WaitingItem } from "./due";
+import type { DueGroup, WaitingItem } from "./due";
 
 function groupLabel(i18n: I18n, group: DueGroup): string {
   switch (group) {
+    case "overdue":
+      return i18n.t("Overdue");
     case "before-noise":
       return i18n.t("Before they work in noise again");
-    case "before-shift-ends":
-      return i18n.t("Before the shift ends");
+    case "today":
+      return i18n.t("Today");
     case "this-week":
       return i18n.t("This week");
     case "later":
@@ -41,60 +41,37 @@ function actionOf(
   i18n: I18n,
   { kind, worker, facts, id }: FindingRow,
 ): { label: string; to: string } {
-  const assign = () => {
-    const models = remedyOf(facts)?.modelIds ?? [];
-    return worker
-      ? `${paths.worker(worker.id)}?assign=${models.join(",")}#protectors`
-      : paths.finding(id);
-  };
+  const remedy = remedyOf(facts);
   switch (kind) {
     case "no-protector":
     case "over-limit-at-ear":
     case "dual-protection":
     case "protects-too-little":
-      return worker && remedyOf(facts)
-        ? { label: i18n.t("Assign"), to: assign() }
-        : { label: i18n.t("Plan"), to: paths.finding(id) };
     case "protects-too-much":
-      return worker && remedyOf(facts)
-        ? { label: i18n.t("Choose"), to: assign() }
+      return worker && remedy
+        ? { label: i18n.t("Assign"), to: paths.assign(worker.id, handoutsOf(remedy)[0]) }
         : { label: i18n.t("Open"), to: paths.finding(id) };
     case "reading-missing":
       return { label: i18n.t("Add"), to: paths.newRun };
     case "instrument":
-      return { label: i18n.t("Book"), to: paths.instruments };
+      return facts.calibrationFailedOn
+        ? { label: i18n.t("Open"), to: paths.finding(id) }
+        : { label: i18n.t("Book"), to: paths.instruments };
     default:
       return { label: i18n.t("Open"), to: paths.finding(id) };
   }
 }
 
-function DueCell({ due, today }: { due: Due; today: string }) {
-  const { i18n } = useLingui();
-  const locale = useLocale();
-  if (due.kind === "now") return <b>{i18n.t("now")}</b>;
-  if (due.kind === "time") return <span className="mono">{due.time}</span>;
-  if (due.kind === "none") return <>–</>;
-  const isNear = due.date >= addDays(today, -6) && due.date <= addDays(today, 6);
-  return (
-    <span className="two-lines">
-      <span className="mono">
-        {isNear ? formatWeekday(due.date, locale) : formatDayMonth(due.date, locale)}
-      </span>
-      {due.isLate && <b className="beneath-ink">{i18n.t("late")}</b>}
-    </span>
-  );
-}
-
 export function WaitingTable({
   items,
-  today,
+  todayAt,
   state,
   error,
   onRetry,
   empty,
 }: {
   items: readonly WaitingItem[];
-  today: string;
+  todayAt: (siteId: string) => string;
   state: "ready" | "loading" | "failed";
   error?: unknown;
   onRetry: () => void;
@@ -105,7 +82,13 @@ export function WaitingTable({
   const days = useMemo(() => items.map(({ finding }) => finding.figures), [items]);
   const frame = useTableFrame(days);
   const columns: DataColumn<WaitingItem>[] = [
-    { id: "due", head: i18n.t("Due"), cell: ({ due }) => <DueCell due={due} today={today} /> },
+    {
+      id: "due",
+      head: i18n.t("Due"),
+      cell: ({ finding }) => (
+        <FindingDue dueOn={finding.dueOn} today={todayAt(finding.siteId)} isNearby />
+      ),
+    },
     {
       id: "wrong",
       head: <TwoLineHead first={i18n.t("What is wrong,")} second={i18n.t("and its state")} />,
@@ -116,13 +99,13 @@ export function WaitingTable({
             {findingWord(i18n, finding.kind)}
           </TextLink>
           <span className="beneath">{findingStateWord(i18n, finding.state)}</span>
-          {also && (
-            <TextLink className="is-quiet beneath" to={paths.finding(also.id)}>
+          {also.map((other) => (
+            <TextLink key={other.id} className="is-quiet beneath" to={paths.finding(other.id)}>
               {i18n.t("and {what}", {
-                what: withinSentence(findingWord(i18n, also.kind), locale),
+                what: withinSentence(findingWord(i18n, other.kind), locale),
               })}
             </TextLink>
-          )}
+          ))}
         </span>
       ),
     },
@@ -155,18 +138,7 @@ export function WaitingTable({
     {
       id: "todo",
       head: <TwoLineHead first={i18n.t("What to do, then")} second={i18n.t("what was noticed")} />,
-      cell: ({ finding }) => {
-        const figure = remedyFigure(locale, finding.facts, (word) => protectorWordText(i18n, word));
-        const order = orderSentence(i18n, locale, finding.kind, finding.facts);
-        return (
-          <span className="two-lines">
-            <b>{figure ? i18n.t("{order}: {figure}", { order, figure }) : order}</b>
-            <span className="beneath">
-              {noticedSentence(i18n, locale, finding.kind, finding.facts)}
-            </span>
-          </span>
-        );
-      },
+      cell: ({ finding }) => <FindingWords finding={finding} />,
     },
     {
       id: "action",

@@ -2,13 +2,14 @@ import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { useMemo } from "react";
 import { type DataColumn, DataTable } from "../../components/data-table";
+import { useLocale } from "../../lib/i18n";
 import type { FileColumn } from "./parse-dictionary";
 import { yearFileQueries } from "./queries";
 
 /** What each column of the file means, as the dictionary beside it says. */
 export function ColumnsTable() {
   const { i18n } = useLingui();
-  const dictionary = useQuery(yearFileQueries.dictionary);
+  const dictionary = useQuery(yearFileQueries.dictionary(useLocale()));
   const columns = useMemo<DataColumn<FileColumn>[]>(
     () => [
       {
@@ -19,7 +20,7 @@ export function ColumnsTable() {
           <>
             <span className="mono file-column">{name}</span>
             {/* A phone has no room for three columns. */}
-            <span className="file-meaning" lang="en">
+            <span className="file-meaning">
               {unit && <i>{unit}: </i>}
               {meaning}
             </span>
@@ -30,7 +31,7 @@ export function ColumnsTable() {
       {
         id: "meaning",
         head: i18n.t("Meaning"),
-        cell: ({ meaning }) => <span lang="en">{meaning}</span>,
+        cell: ({ meaning }) => meaning,
         hidesOnPhone: true,
       },
     ],

@@ -67,6 +67,17 @@ export function MonthsTable({
   const count = (value: number) =>
     value === 0 ? <span className="is-zero">0</span> : formatNumber(value, 0, locale);
   const [limit] = limits;
+  /** On a phone the figures of a month stand under words of their own. */
+  const heads: Record<CountName, string> = {
+    days: i18n.t("Days"),
+    over: i18n.t("Over at the ear"),
+    cantTell: i18n.t("Can’t tell yet at the ear"),
+    notAssessed: i18n.t("Not assessed"),
+    overOutside: i18n.t("Over without protection"),
+    cantTellOutside: i18n.t("Can’t tell yet without protection"),
+    protectorFault: i18n.t("Protector too little or much"),
+    corrected: i18n.t("Corrected"),
+  };
   // Where the rule has no limit at the ear there is nothing to count: that is not zero.
   const figure = (name: CountName, value: number) =>
     AT_EAR.has(name) && frame?.hasLimitAtEar === false ? NO_FIGURE : count(value);
@@ -119,8 +130,12 @@ export function MonthsTable({
               <th scope="col" className="ends-group">
                 {i18n.t("Corrected")}
               </th>
-              <th scope="col">{i18n.t("at the ear")}</th>
-              <th scope="col">{i18n.t("without protection")}</th>
+              <th scope="col" className="of-strip">
+                {i18n.t("at the ear")}
+              </th>
+              <th scope="col" className="of-strip">
+                {i18n.t("without protection")}
+              </th>
             </tr>
           </thead>
           <tbody>
@@ -149,11 +164,13 @@ export function MonthsTable({
                   )}
                 </th>
                 {COUNTS.map((name) => (
-                  <td key={name} className={cellOf(name)}>
+                  <td key={name} className={cellOf(name)} data-head={heads[name]}>
                     {figure(name, month[name])}
                   </td>
                 ))}
-                <td className="is-figure is-strong">{formatLevel(month.medianAtEarDb, locale)}</td>
+                <td className="is-figure is-strong of-strip">
+                  {formatLevel(month.medianAtEarDb, locale)}
+                </td>
                 <td className="strip-cell">
                   <DropStrip
                     {...medians(month)}
@@ -164,7 +181,7 @@ export function MonthsTable({
                     isHidden
                   />
                 </td>
-                <td className="is-figure">{formatLevel(month.medianOutsideDb, locale)}</td>
+                <td className="is-figure of-strip">{formatLevel(month.medianOutsideDb, locale)}</td>
               </tr>
             ))}
           </tbody>
@@ -177,11 +194,11 @@ export function MonthsTable({
                     : i18n.t("The year")}
                 </th>
                 {COUNTS.map((name) => (
-                  <td key={name} className={cellOf(name)}>
+                  <td key={name} className={cellOf(name)} data-head={heads[name]}>
                     {figure(name, sum(name))}
                   </td>
                 ))}
-                <td colSpan={3} />
+                <td colSpan={3} className="of-strip" />
               </tr>
             </tfoot>
           )}

@@ -1,5 +1,6 @@
 import { queryOptions } from "@tanstack/react-query";
 import type { z } from "zod";
+import type { Locale } from "../../../shared/i18n";
 import type { GapKind, GapNames, GapsView } from "../../../shared/schemas/waiting";
 import { ApiError, api } from "../../lib/api";
 import { ownReply } from "../../lib/own-reply";
@@ -14,7 +15,8 @@ export interface YearOfSite {
   readonly year: number;
 }
 
-const DICTIONARY = "/api/exports/year-dictionary.csv";
+const dictionaryAddress = (language: Locale) =>
+  `/api/exports/year-dictionary.csv?${new URLSearchParams({ language })}`;
 
 export const yearFileQueries = {
   gaps: ({ siteId, year }: YearOfSite) =>
@@ -38,17 +40,21 @@ export const yearFileQueries = {
         }),
       select: ({ rows }) => rows,
     }),
-  dictionary: queryOptions({
-    queryKey: ["year-file", "dictionary"],
-    // The columns are the file's own: read from what goes out with it, not told a second time.
-    queryFn: async ({ signal }) => {
-      const response = await fetch(DICTIONARY, { signal, credentials: "same-origin" });
-      if (!response.ok)
-        throw new ApiError(response.status, `http-${response.status}`, {}, [], null, "");
-      return parseDictionary(await response.text());
-    },
-    staleTime: Number.POSITIVE_INFINITY,
-  }),
+  dictionary: (language: Locale) =>
+    queryOptions({
+      queryKey: ["year-file", "dictionary", language],
+      // The columns are the file's own: read from what goes out with it, not told a second time.
+      queryFn: async ({ signal }) => {
+        const response = await fetch(dictionaryAddress(language), {
+          signal,
+          credentials: "same-origin",
+        });
+        if (!response.ok)
+          throw new ApiError(response.status, `http-${response.status}`, {}, [], null, "");
+        return parseDictionary(await response.text());
+      },
+      staleTime: Number.POSITIVE_INFINITY,
+    }),
 };
 
 export function yearFileAddress({ siteId, year }: YearOfSite, workers: "number" | "name"): string {
@@ -56,8 +62,8 @@ export function yearFileAddress({ siteId, year }: YearOfSite, workers: "number" 
 }
 
 /** Hands both files to the browser, which asks where to put them and shows how far they are. */
-export function downloadYear(year: YearOfSite, workers: "number" | "name"): void {
-  for (const address of [yearFileAddress(year, workers), DICTIONARY]) {
+export function downloadYear(year: YearOfSite, workers: "number" | "name", language: Locale): void {
+  for (const address of [yearFileAddress(year, workers), dictionaryAddress(language)]) {
     const link = document.createElement("a");
     link.href = address;
     link.download = "";

@@ -1,0 +1,68 @@
+import { describe, expect, test } from "vitest";
+import { type DoubtfulFacts, findRunDoubts } from "./run-doubts";
+
+const sound: DoubtfulFacts = {
+  checkBeforeDb: 94.0,
+  checkAfterDb: 94.0,
+  date: "2026-03-02",
+  calibration: { dueOn: "2026-03-02", failedOn: null },
+  durationMin: 5,
+  leastMin: 5,
+  shown: [],
+};
+const codes = (facts: Partial<DoubtfulFacts>) =>
+  findRunDoubts({ ...sound, ...facts }).map(({ code }) => code);
+
+// ISO 9612:2009, 12.2: discarded where the field checks differ by more than 0.5 dB.
+describe("field checks", () => {
+  test.each([
+    [94.0, 94.5],
+    [94.5, 94.0],
+    [113.9, 114.4],
+    [94.1, null],
+    [null, null],
+  ])("%s and %s raise no doubt", (checkBeforeDb, checkAfterDb) => {
+    expect(codes({ checkBeforeDb, checkAfterDb })).toEqual([]);
+  });
+
+  test.each([
+    [94.0, 94.51],
+    [94.0, 93.4],
+    [114.0, 109.0],
+  ])("%s and %s have drifted", (checkBeforeDb, checkAfterDb) => {
+    expect(codes({ checkBeforeDb, checkAfterDb })).toEqual(["field-check-drift"]);
+  });
+
+  test.each([
+    [114.0, 94.0],
+    [94.0, 113.8],
+    [94.0, 99.1],
+    [84.0, 84.0],
+    [49.0, null],
+    [null, 129.5],
+  ])("%s and %s were mistyped, and nothing is said of drift", (checkBeforeDb, checkAfterDb) => {
+    expect(codes({ checkBeforeDb, checkAfterDb })).toEqual(["field-check-mistyped"]);
+  });
+});
+
+test("a certificate holds on the very day on which it runs out, and not on the next", () => {
+  expect(codes({ date: "2026-03-02" })).toEqual([]);
+  expect(codes({ date: "2026-03-03" })).toEqual(["calibration-out-of-date"]);
+  expect(codes({ calibration: { dueOn: null, failedOn: null }, date: "2030-01-01" })).toEqual([]);
+});
+
+test("a calibration that it failed is not called out of date", () => {
+  expect(codes({ calibration: { dueOn: "2026-01-01", failedOn: "2026-02-01" } })).toEqual([
+    "calibration-failed",
+  ]);
+});
+
+test("a run may not be shorter than what is asked for; while it is out it has no length", () => {
+  expect(codes({ durationMin: 4.99 })).toEqual(["run-too-short"]);
+  expect(codes({ durationMin: null })).toEqual([]);
+  expect(codes({ durationMin: 1, leastMin: null })).toEqual([]);
+});
+
+test("what the instrument showed is a doubt each", () => {
+  expect(codes({ shown: ["clipped", "under-range"] })).toEqual(["clipped", "under-range"]);
+});

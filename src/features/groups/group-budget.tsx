@@ -1,0 +1,196 @@
+import type { I18n } from "@lingui/core";
+import { useLingui } from "@lingui/react";
+import { formatShare } from "../../../shared/format/dose";
+import { formatLevel, formatUncertainty } from "../../../shared/format/level";
+import { formatNumber } from "../../../shared/format/number";
+import type { BudgetView, GroupBudgetView } from "../../../shared/schemas/group";
+import { DataTable } from "../../components/data-table";
+import { ShareBar } from "../../components/share-bar";
+import { useLocale } from "../../lib/i18n";
+import { instrumentClassWord, strategyWord } from "../../lib/register-words";
+
+type Item = BudgetView["items"][number];
+type Narrowing = BudgetView["narrowings"][number];
+
+/** Below this share a part is named with the rest: the picture would only show a line. */
+const SMALL_SHARE_PCT = 1;
+const MOST_NARROWINGS = 3;
+
+function sourceWord(i18n: I18n, source: Item["source"]): string {
+  switch (source) {
+    case "sampling":
+      return i18n.t("sampling");
+    case "duration":
+      return i18n.t("duration");
+    case "instrument":
+      return i18n.t("instrument");
+    case "position":
+      return i18n.t("microphone position");
+  }
+}
+
+/** Why there is no uncertainty, with the tasks that lack what it takes. */
+export function noBudgetWords(i18n: I18n, reason: string, tasks: string): string {
+  switch (reason) {
+    case "no-tasks":
+      return i18n.t("The nominal day names no task.");
+    case "mixed-strategies":
+      return i18n.t(
+        "Its levels were measured by different strategies, and the standard has no sum for that.",
+      );
+    case "not-an-energy-level":
+      return i18n.t("No energy level: {tasks}. A 5 dB average has no uncertainty by ISO 9612.", {
+        tasks,
+      });
+    case "too-few-samples":
+      return tasks === ""
+        ? i18n.t("Too few samples: three at least.")
+        : i18n.t("Too few samples: {tasks}.", { tasks });
+    default:
+      return tasks === ""
+        ? i18n.t("Nobody has said what it was measured with.")
+        : i18n.t("Nobody has said what it was measured with: {tasks}.", { tasks });
+  }
+}
+
+/** "3 more samples of Grinding", "a class 1 instrument". */
+export function changeWords(
+  i18n: I18n,
+  { change }: Pick<Narrowing, "change">,
+  taskName: (id: string) => string,
+): string {
+  switch (change.kind) {
+    case "more-samples":
+      return change.taskId === null
+        ? i18n.t("{count} more samples", { count: change.count })
+        : i18n.t("{count} more samples of {task}", {
+            count: change.count,
+            task: taskName(change.taskId),
+          });
+    case "instrument":
+      return change.instrument === "class-1-meter"
+        ? i18n.t("a class 1 instrument")
+        : instrumentClassWord(i18n, change.instrument);
+    case "duration":
+      return i18n.t("the duration of {task} known twice as well", {
+        task: taskName(change.taskId),
+      });
+  }
+}
+
+/** A group's level with its uncertainty: the budget as a picture and a table, and what would narrow it most. */
+export function GroupBudget({
+  of,
+  taskName,
+}: {
+  of: GroupBudgetView;
+  taskName: (id: string) => string;
+}) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const kept = of.keptReasons.map((reason) => (
+    <p key={reason} className="group-kept">
+      <b>{i18n.t("Kept: {reason}.", { reason })}</b>{" "}
+      {i18n.t("The result no longer bears the standard’s name.")}
+    </p>
+  ));
+  const { budget } = of;
+  if (!budget)
+    return (
+      <>
+        <p className="not-assessed">
+          {noBudgetWords(i18n, of.reason ?? "", of.lackingTaskIds.map(taskName).join(", "))}
+        </p>
+        {kept}
+      </>
+    );
+  const labelOf = ({ source, taskId }: Item) =>
+    taskId === null || taskId === ""
+      ? sourceWord(i18n, source)
+      : i18n.t("{source}, {task}", { source: sourceWord(i18n, source), task: taskName(taskId) });
+  const shown = budget.items.filter(({ sharePct }) => sharePct >= SMALL_SHARE_PCT);
+  const restPct = budget.items
+    .filter(({ sharePct }) => sharePct < SMALL_SHARE_PCT)
+    .reduce((sum, { sharePct }) => sum + sharePct, 0);
+  const [dominant] = budget.items;
+  const [best, ...others] = budget.narrowings.slice(0, MOST_NARROWINGS);
+  const narrowed = (one: Narrowing) =>
+    i18n.t("{change}: {after} instead of {before}", {
+      change: changeWords(i18n, one, taskName),
+      after: formatUncertainty(one.expandedDb, locale),
+      before: formatUncertainty(budget.expandedDb, locale),
+    });
+  return (
+    <div className="group-basis">
+      <p className="group-figure">
+        <b className="mono">{formatLevel(budget.lexDb, locale)}</b>{" "}
+        <span className="mono">{formatUncertainty(budget.expandedDb, locale)}</span>{" "}
+        {i18n.t("dB LEX,8h, {strategy}", { strategy: strategyWord(i18n, budget.strategy) })}
+        {dominant && (
+          <>
+            . {i18n.t("What dominates:")} <b>{labelOf(dominant)}</b>
+          </>
+        )}
+        .
+      </p>
+      {budget.isScatterLarge && budget.scatterDb !== null && (
+        <p className="group-kept">
+          <b>
+            {i18n.t(
+              "The samples scatter by {scatter} dB, more than 3.5: the standard asks to plan anew, or to divide the group.",
+              { scatter: formatLevel(budget.scatterDb, locale) },
+            )}
+          </b>
+        </p>
+      )}
+      {kept}
+      <ShareBar
+        kind="uncertainty"
+        lead={i18n.t("Share of u²")}
+        shares={[
+          ...shown.map((item) => ({ label: labelOf(item), sharePct: item.sharePct })),
+          ...(restPct > 0 ? [{ label: i18n.t("the rest"), sharePct: restPct }] : []),
+        ]}
+      />
+      {best ? (
+        <p className="group-kept">
+          {i18n.t("What would narrow it most:")} <b>{narrowed(best)}</b>.
+          {others.length > 0 && ` ${i18n.t("Then:")} ${others.map(narrowed).join("; ")}.`}
+        </p>
+      ) : (
+        <p className="group-kept">{i18n.t("Nothing that can be measured would narrow it.")}</p>
+      )}
+      <DataTable<Item>
+        caption={i18n.t("Uncertainty budget")}
+        rows={budget.items}
+        rowKey={({ source, taskId }) => `${source} ${taskId}`}
+        columns={[
+          {
+            id: "source",
+            head: i18n.t("Part"),
+            isRowHead: true,
+            cell: labelOf,
+          },
+          {
+            id: "contribution",
+            head: "c·u",
+            unit: "dB",
+            kind: "figure",
+            cell: ({ contributionDb }) => formatNumber(contributionDb, 2, locale),
+          },
+          {
+            id: "share",
+            head: i18n.t("Share of u²"),
+            kind: "figure",
+            cell: ({ sharePct }) => formatShare(sharePct, locale),
+          },
+        ]}
+      />
+      <p className="table-foot">
+        {i18n.t("u = {u} dB; U = 1.65 · u, one-sided 95 %. ISO 9612:2009, Annex C.", {
+          u: formatNumber(budget.combinedDb, 2, locale),
+        })}
+      </p>
+    </div>
+  );
+}

@@ -1,0 +1,82 @@
+import { useLingui } from "@lingui/react";
+import { useState } from "react";
+import type { FileView } from "../../../shared/schemas/outing";
+import { Field } from "../../components/form";
+import { TextButton } from "../../components/link";
+import { ApiError } from "../../lib/api";
+import { issueText } from "../../lib/issue-text";
+import { problemText } from "../../lib/problem-text";
+import { attachFile } from "./queries";
+
+/** Files are sent as they are chosen; what they belong to names them when it is saved. */
+export function FileInput({
+  label,
+  accept,
+  atMost,
+  isCamera = false,
+  files,
+  onFiles,
+}: {
+  label: string;
+  accept: string;
+  atMost: number;
+  /** Opens a phone's camera. */
+  isCamera?: boolean;
+  files: readonly FileView[];
+  onFiles: (files: readonly FileView[]) => void;
+}) {
+  const { i18n } = useLingui();
+  const [isSending, setIsSending] = useState(false);
+  const [error, setError] = useState<string>();
+
+  async function send(chosen: File) {
+    setIsSending(true);
+    setError(undefined);
+    try {
+      const sent = await attachFile(chosen);
+      onFiles([...files.filter(({ id }) => id !== sent.id), sent].slice(-atMost));
+    } catch (failure) {
+      const [issue] = failure instanceof ApiError ? failure.issues : [];
+      setError(issue ? issueText(i18n, issue) : problemText(i18n, failure));
+    } finally {
+      setIsSending(false);
+    }
+  }
+
+  return (
+    <Field label={label} error={error} isOptional>
+      {({ readOnly: _, "aria-required": __, ...wires }) => (
+        <div className="file-input">
+          <input
+            {...wires}
+            type="file"
+            className="input"
+            accept={accept}
+            capture={isCamera ? "environment" : undefined}
+            disabled={isSending}
+            aria-busy={isSending}
+            onChange={(event) => {
+              const [chosen] = event.target.files ?? [];
+              event.target.value = "";
+              if (chosen) void send(chosen);
+            }}
+          />
+          {isSending && <p role="status">{i18n.t("Sending…")}</p>}
+          {files.length > 0 && (
+            <ul>
+              {files.map((file) => (
+                <li key={file.id}>
+                  {file.name}{" "}
+                  <TextButton onClick={() => onFiles(files.filter(({ id }) => id !== file.id))}>
+                    {i18n.t("Take out")}
+                    <span className="sr-only"> {file.name}</span>
+                  </TextButton>
+                </li>
+              ))}
+            </ul>
+          )}
+        </div>
+      )}
+    </Field>
+  );
+}

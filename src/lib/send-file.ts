@@ -1,0 +1,55 @@
+import {
+  ApiError,
+  apiAddress,
+  apiHeaders,
+  connectionEvents,
+  newChangeKey,
+  type ReplySchema,
+  toProblem,
+} from "./api";
+
+export interface FileToSend<T> {
+  readonly body: FormData;
+  readonly schema: ReplySchema<T>;
+  readonly idempotencyKey?: string;
+  readonly signal?: AbortSignal;
+  /** 0 to 100; fetch can't say it. */
+  readonly onProgress?: (progressPct: number) => void;
+}
+
+/** Sends a form with a large file, telling how far it is. */
+export function sendFile<T>(
+  path: string,
+  { body, schema, idempotencyKey = newChangeKey(), signal, onProgress }: FileToSend<T>,
+): Promise<T> {
+  return new Promise<T>((resolve, reject) => {
+    const request = new XMLHttpRequest();
+    request.open("POST", apiAddress(path));
+    for (const [name, value] of apiHeaders(idempotencyKey)) request.setRequestHeader(name, value);
+    request.upload.onprogress = ({ loaded, total }) => onProgress?.((100 * loaded) / total);
+    request.onload = () => {
+      connectionEvents.tell(request.status === 401 ? "session-expired" : "ok");
+      let reply: unknown = null;
+      try {
+        reply = JSON.parse(request.responseText);
+      } catch {
+        // What is no JSON is a problem without a code.
+      }
+      if (request.status >= 400) reject(toProblem(request.status, request.statusText, reply));
+      else {
+        try {
+          resolve(schema.parse(reply));
+        } catch (error) {
+          reject(error);
+        }
+      }
+    };
+    request.onerror = () => {
+      connectionEvents.tell("offline");
+      reject(new ApiError(0, "no-connection", {}, [], null, "No connection"));
+    };
+    request.onabort = () => reject(signal?.reason ?? new DOMException("Aborted", "AbortError"));
+    signal?.addEventListener("abort", () => request.abort(), { once: true });
+    request.send(body);
+  });
+}
