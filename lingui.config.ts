@@ -26,6 +26,7 @@ const parts: Record<string, string[]> = {
     ),
     "shared/findings/**",
     "shared/format/**",
+    "shared/problems/**",
     "shared/day/**",
   ],
   people: [

@@ -1,8 +1,9 @@
 /**
  * npm run bench -- [--shifts=N] [part…]
  * Measures what the issue of speed is about, each figure beside a bound that is measured in the same run: engine,
- * screens, saving, export, pages. Sets up a database of its own, filled with scale data, and removes it. At the size
- * that it has unless told otherwise, the whole takes less than five minutes on two cores with nothing else to do.
+ * history, recordings, pages, screens, saving, export, histories. Sets up a database of its own, filled with scale data,
+ * and removes it. At the size that it has unless told otherwise, the whole takes less than five minutes on two cores with
+ * nothing else to do.
  */
 
 import { spawn } from "node:child_process";

@@ -1,11 +1,11 @@
 import { randomUUID } from "node:crypto";
 import { existsSync } from "node:fs";
 import path from "node:path";
-import express, { type ErrorRequestHandler, type Express } from "express";
+import express, { type ErrorRequestHandler, type Express, type Request } from "express";
 import helmet from "helmet";
 import { Provider } from "./auth/provider";
 import { limitTries } from "./auth/rate-limit";
-import { defineAuthRoutes } from "./auth/routes";
+import { defineAuthRoutes, localPath } from "./auth/routes";
 import { refuseForgery, sessions } from "./auth/session";
 import type { Config } from "./config";
 import { sequelize } from "./lib/db";
@@ -15,6 +15,7 @@ import { openFileStore } from "./lib/file-store";
 import { describeError, type Log } from "./lib/log";
 import { pendingMigrations } from "./lib/migrator";
 import { buildOpenApi } from "./lib/open-api";
+import { answerProblem } from "./lib/problem-answer";
 import { withRequestId } from "./lib/request-context";
 import { defineRoutes } from "./routes";
 
@@ -105,7 +106,8 @@ export function createApp(
     response.setHeader("cache-control", "no-store");
     next();
   });
-  api.use(["/auth/sign-in", "/auth/callback"], limitTries("sign-in", 60, 10));
+  // Two requests a sign-in: far more than any crew, and what does not end well has a bound of its own (auth/routes.ts).
+  api.use(["/auth/sign-in", "/auth/callback"], limitTries("sign-in", 1200, 10));
   api.use("/auth/worker-code", limitTries("worker-code", 10, 15));
   api.use(...sessions(config));
   api.use(refuseForgery);
@@ -151,7 +153,7 @@ function serveClient(app: Express): void {
 /** Every failure leaves as problem+json; what the client can't mend is logged without its message. */
 const problems =
   (log: Log): ErrorRequestHandler =>
-  (thrown, _request, response, next) => {
+  (thrown, request, response, next) => {
     const requestId = response.locals.requestId as string;
     if (response.headersSent) return next(thrown);
     const error = toAppError(fromDatabase(thrown));
@@ -160,8 +162,22 @@ const problems =
         { requestId, route: response.locals.route, code: error.code, ...describeError(thrown) },
         "request failed",
       );
-    response.status(error.status).type("application/problem+json").json(error.toProblem(requestId));
+    if (isSignInPage(request)) response.redirect(signInAddress(error, request));
+    else answerProblem(error, request, response).catch(next);
   };
+
+/** A browser on its way to or from the provider: a person reads the answer, in a page and not as JSON. */
+const isSignInPage = (request: Request): boolean =>
+  /^\/api\/auth\/(sign-in|callback)$/.test(request.baseUrl + request.path) &&
+  request.accepts("application/problem+json", "text/html") === "text/html";
+
+function signInAddress({ code, params }: AppError, request: Request): string {
+  const search = new URLSearchParams({ problem: code });
+  if (params.minutes !== undefined) search.set("minutes", String(params.minutes));
+  const returnTo = localPath(request.query.returnTo ?? request.session?.returnTo);
+  if (returnTo !== "/") search.set("returnTo", returnTo);
+  return `/sign-in?${search}`;
+}
 
 function toAppError(error: unknown): AppError {
   if (error instanceof AppError) return error;

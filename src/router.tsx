@@ -9,9 +9,10 @@ import {
   useLocation,
   useRoutes,
 } from "react-router-dom";
-import { addCatalogue, type CataloguePart, isLocale } from "../shared/i18n";
+import { addCatalogue, type CataloguePart } from "../shared/i18n";
 import type { RoleName } from "../shared/schemas/session";
-import { hasRole, sessionQuery, useUser } from "./features/session/session";
+import { hasRole, keepLanguage, sessionQuery, useUser } from "./features/session/session";
+import { readAs } from "./lib/i18n";
 import { paths } from "./paths";
 import { dayRoutes } from "./routes/day-routes";
 import { homeOf } from "./routes/home";
@@ -83,14 +84,7 @@ export function createRoutes(queryClient: QueryClient, i18n: I18n): RouteObject[
   const loadSignedIn = once(async () => {
     const { user, pendingName } = await queryClient.ensureQueryData(sessionQuery);
     if (!user) return { Component: pendingName ? ToNoAccess : ToSignIn };
-    if (
-      !document.cookie.includes("dinward.locale=") &&
-      isLocale(user.language) &&
-      user.language !== i18n.locale
-    ) {
-      const { chooseLocale } = await import("./lib/i18n");
-      await chooseLocale(i18n, user.language);
-    }
+    await readAs(i18n, user.language, keepLanguage);
     return { Component: SignedIn };
   });
 

@@ -1,3 +1,4 @@
+import type { Request } from "express";
 import { ipKeyGenerator, rateLimit, type Store } from "express-rate-limit";
 import { QueryTypes } from "sequelize";
 import { sequelize } from "../lib/db";
@@ -39,16 +40,59 @@ class DatabaseStore implements Store {
   }
 }
 
-/** At most `limit` tries per address and window. */
+const keyOf = (request: Request) => ipKeyGenerator(request.ip ?? "unknown");
+
+function tooManyTries(request: Request, resetsAt: Date): AppError {
+  const waitS = Math.max(1, Math.ceil((resetsAt.getTime() - Date.now()) / 1000));
+  request.res?.setHeader("retry-after", String(waitS));
+  return new AppError("too-many-tries", 429, { minutes: Math.ceil(waitS / 60) });
+}
+
+/** At most `limit` requests per address and window. */
 export function limitTries(name: string, limit: number, windowMin: number) {
+  const windowMs = windowMin * 60_000;
   return rateLimit({
-    windowMs: windowMin * 60_000,
+    windowMs,
     limit,
     standardHeaders: "draft-8",
     legacyHeaders: false,
     store: new DatabaseStore(`${name}:`),
-    keyGenerator: (request) => ipKeyGenerator(request.ip ?? "unknown"),
-    handler: (_request, _response, next, options) =>
-      next(new AppError("too-many-tries", 429, { minutes: Math.ceil(options.windowMs / 60_000) })),
+    keyGenerator: keyOf,
+    handler: (request, _response, next) => {
+      const { resetTime } = (request as Request & { rateLimit: { resetTime?: Date } }).rateLimit;
+      next(tooManyTries(request, resetTime ?? new Date(Date.now() + windowMs)));
+    },
   });
+}
+
+/**
+ * Tries of which only those count that do not end well: a whole crew signs in from behind one address, and somebody who
+ * guesses is stopped soon.
+ */
+export class UnfinishedTries {
+  private readonly store: DatabaseStore;
+
+  constructor(
+    name: string,
+    private readonly limit: number,
+    windowMin: number,
+  ) {
+    this.store = new DatabaseStore(`${name}:`);
+    this.store.init({ windowMs: windowMin * 60_000 });
+  }
+
+  /**
+   * Counts a try, until it ends well.
+   *
+   * @throws AppError too-many-tries
+   */
+  async begin(request: Request): Promise<void> {
+    const { totalHits, resetTime } = await this.store.increment(keyOf(request));
+    if (totalHits > this.limit) throw tooManyTries(request, resetTime ?? new Date());
+  }
+
+  /** It ended well: as if it had never been. */
+  async endWell(request: Request): Promise<void> {
+    await this.store.decrement(keyOf(request));
+  }
 }

@@ -14,6 +14,7 @@ import { endpoint } from "../lib/endpoint";
 import { AppError, issue, unprocessable } from "../lib/errors";
 import { loadActor } from "./actor";
 import type { Provider, ProviderIdentity } from "./provider";
+import { UnfinishedTries } from "./rate-limit";
 import { clearCookies, rotateSession } from "./session";
 
 interface Candidate {
@@ -69,8 +70,11 @@ async function enter(
   });
 }
 
+/** Begun and not finished, or failed, from one address in ten minutes. A crew at shift change stays far below. */
+const unfinished = new UnfinishedTries("sign-in-unfinished", 60, 10);
+
 /** Only a path of this application: no other site can be put into the link. */
-const localPath = (value: unknown): string =>
+export const localPath = (value: unknown): string =>
   typeof value === "string" && /^\/(?![/\\])[^\r\n]*$/.test(value) ? value : "/";
 
 function authenticate(
@@ -102,6 +106,8 @@ export function defineAuthRoutes(provider: Provider): void {
       const { strategy } = await provider.connect().catch(() => {
         throw new AppError("provider-down", 503);
       });
+      if (!request.session.isSigningIn) await unfinished.begin(request);
+      request.session.isSigningIn = true;
       request.session.returnTo = localPath(query.returnTo);
       await authenticate(strategy as never, request, response);
     },
@@ -111,16 +117,20 @@ export function defineAuthRoutes(provider: Provider): void {
     "/auth/callback",
     { summary: "Come back from the provider", may: "public" },
     async ({ request, response }) => {
-      const { returnTo } = request.session;
+      const { returnTo, isSigningIn } = request.session;
       const { strategy } = await provider.connect().catch(() => {
         throw new AppError("provider-down", 503);
       });
       const identity = await authenticate(strategy as never, request, response).catch(() => null);
       if (response.headersSent) return;
       if (!identity) {
+        // One that failed stays counted, and the next from here counts anew.
+        request.session.isSigningIn = false;
+        if (!isSigningIn) await unfinished.begin(request);
         response.redirect("/sign-in?failed=1");
         return;
       }
+      if (isSigningIn) await unfinished.endWell(request);
       const user = await findGranted(identity);
       const isGranted = user && (await hasGrant(user));
       if (user && isGranted) {

@@ -4,6 +4,7 @@ import type { NextFunction, Request, RequestHandler, Response } from "express";
 import session from "express-session";
 import { QueryTypes } from "sequelize";
 import type { Config } from "../config";
+import { CSRF_COOKIE, CSRF_HEADER } from "../lib/csrf";
 import { sequelize } from "../lib/db";
 import { AppError } from "../lib/errors";
 
@@ -17,13 +18,14 @@ declare module "express-session" {
     csrf?: string;
     idToken?: string;
     returnTo?: string;
+    /** A sign-in was begun here and counts as unfinished: beginning it again counts no further. */
+    isSigningIn?: boolean;
     /** Whom the provider vouched for, while no grant matches: such a person may only enter a worker's code. */
     pending?: { issuer: string; subject: string; email: string | null; name: string };
   }
 }
 
 const cookieName = "dinward.sid";
-const csrfCookie = "dinward.csrf";
 
 /** connect-pg-simple takes anything with pg's `query`; the one pool of the process serves it too. */
 const poolLike = {
@@ -95,7 +97,7 @@ export function sessions(config: Config<"web">): RequestHandler[] {
 
 export function clearCookies(response: Response): void {
   response.clearCookie(cookieName, { path: "/" });
-  response.clearCookie(csrfCookie, { path: "/" });
+  response.clearCookie(CSRF_COOKIE, { path: "/" });
 }
 
 /** A new session id with nothing of the old session: whoever knew the old id gains nothing. */
@@ -113,7 +115,7 @@ export async function rotateSession(
     request.session.save((error) => (error ? reject(error) : resolve())),
   );
   const { secure } = request.session.cookie;
-  response.cookie(csrfCookie, csrf, {
+  response.cookie(CSRF_COOKIE, csrf, {
     httpOnly: false,
     sameSite: "lax",
     secure: Boolean(secure),
@@ -135,5 +137,5 @@ function isForged(request: Request): boolean {
   const { csrf, userId, pending } = request.session;
   // Without a session there is nothing to forge: the endpoint answers 401 by itself.
   if (!userId && !pending) return false;
-  return !csrf || request.get("x-csrf-token") !== csrf;
+  return !csrf || request.get(CSRF_HEADER) !== csrf;
 }

@@ -1,7 +1,8 @@
 import type { WorkerInput } from "../../shared/schemas/worker";
 import { recordAudit } from "../lib/audit";
 import { todayAt } from "../lib/calendar";
-import { changesBetween, isUnchanged } from "../lib/changes";
+import { type Changes, changesBetween, isUnchanged } from "../lib/changes";
+import { rows } from "../lib/db";
 import type { Actor } from "../lib/policy";
 import type { Site } from "../models/site";
 import type { Worker } from "../models/worker";
@@ -32,10 +33,27 @@ export async function changeWorker(
     subjectId: worker.id,
     values,
   });
+  if (changes.language) await carryLanguage(actor, worker.id, changes.language);
   if (changes.mustWear || changes.personalTargetDb) {
     await markDaysStale(actor.organizationId, {
       workerId: worker.id,
       fromDate: todayAt(site.timeZone),
     });
   }
+}
+
+/** The worker's sign-in reads and is written to in the record's language until its owner has chosen another. */
+async function carryLanguage(actor: Actor, workerId: string, change: Changes[string]) {
+  const carried = await rows<{ id: string }>(
+    `UPDATE users SET language = :to, revision = revision + 1
+     WHERE worker_id = :workerId AND language = :from AND revoked_at IS NULL RETURNING id`,
+    { workerId, ...change },
+  );
+  for (const { id } of carried)
+    await recordAudit(actor, {
+      action: "change-user",
+      subjectKind: "user",
+      subjectId: id,
+      values: { language: change },
+    });
 }

@@ -20,8 +20,9 @@ export async function keepRecording(
 ): Promise<void> {
   if (found.fileId === null) throw new AppError("wrong-state", 409);
   requireDayAhead(deleteOn, timeZone);
+  // An analysis that is under way goes on: its order is the same.
   await execute(
-    "UPDATE recordings SET keep_reason = $2, delete_on = $3, updated_at = now(), revision = revision + 1 WHERE id = $1",
+    `UPDATE recordings SET keep_reason = $2, delete_on = $3, revision = revision + CASE WHEN state IN ('uploaded', 'analysing') THEN 0 ELSE 1 END WHERE id = $1`,
     [found.id, keepReason, deleteOn],
   );
   await recordAudit(actor, {

@@ -1,10 +1,29 @@
 import type { I18n } from "@lingui/core";
-import { type ProposedRemedy, remedyWords } from "../../shared/findings/facts";
+import { type FindingFacts, remedyOf, remedyWords } from "../../shared/findings/facts";
+import { ORDER_KINDS } from "../../shared/findings/orders";
+import { noticedSentence, orderSentence } from "../../shared/findings/sentences";
 import { findingWord } from "../../shared/findings/words";
+import { workerSentence } from "../../shared/findings/worker-sentence";
 import { formatDay } from "../../shared/format/date";
 import { formatLevelWithUnit, formatWholeLevel } from "../../shared/format/level";
 import type { Locale } from "../../shared/i18n";
 import type { FindingKind } from "../../shared/schemas/finding";
+
+/** One of the findings that a notice tells of, with the figures of the item's own day. */
+export interface NoticedFinding {
+  kind: FindingKind;
+  facts: FindingFacts;
+  isStillOver: boolean;
+}
+
+export interface NoticeItem {
+  workerName: string;
+  employeeNumber: string;
+  date: string;
+  atEarDb: number | null;
+  outsideDb: number | null;
+  findings: readonly NoticedFinding[];
+}
 
 export interface NoticeFacts {
   audience: "officer" | "supervisor" | "worker";
@@ -13,17 +32,7 @@ export interface NoticeFacts {
   siteName: string;
   /** Said where this replaces what was sent before. */
   replaces: boolean;
-  items: readonly {
-    workerName: string;
-    employeeNumber: string;
-    date: string;
-    kinds: readonly FindingKind[];
-    atEarDb: number | null;
-    outsideDb: number | null;
-    /** What to give out, where the finding proposes something. */
-    remedy: ProposedRemedy | null;
-    isStillOver: boolean;
-  }[];
+  items: readonly NoticeItem[];
   link: string;
 }
 
@@ -70,53 +79,102 @@ function subjectOf(i18n: I18n, locale: Locale, { audience, items }: NoticeFacts)
   return i18n.t("{workers, plural, one {One person} other {# people}} to look after", { workers });
 }
 
+const urgencyOf = ({ kind }: NoticedFinding): number => {
+  const place = ORDER_KINDS.indexOf(kind);
+  return place < 0 ? ORDER_KINDS.length : place;
+};
+
+/** What is still so, most urgent first. */
+const stillOver = ({ findings }: NoticeItem): NoticedFinding[] =>
+  findings.filter(({ isStillOver }) => isStillOver).toSorted((a, b) => urgencyOf(a) - urgencyOf(b));
+
+const isPeak = ({ kind }: NoticedFinding) => kind === "peak-or-ceiling";
+
 function workerLines(i18n: I18n, locale: Locale, { items }: NoticeFacts): string[] {
-  return items.flatMap(({ date, kinds, atEarDb, remedy, isStillOver }) => {
-    const day = formatDay(date, locale);
-    const level = formatWholeLevel(atEarDb, locale);
-    const said = !isStillOver
-      ? i18n.t("On {day} you were not over the limit after all.", { day })
-      : kinds.includes("no-protector")
-        ? i18n.t("On {day} you worked in loud noise and no hearing protector is assigned to you.", {
-            day,
-          })
-        : atEarDb !== null
-          ? i18n.t(
-              "On {day} about {level} decibels reached your ear. That is more than is allowed.",
-              { day, level },
-            )
-          : i18n.t("On {day} the noise around you was more than is allowed.", { day });
-    const todo = !isStillOver
-      ? i18n.t("You need not do anything.")
-      : remedy
-        ? i18n.t("Please ask your supervisor for {protector} before you work in noise again.", {
-            protector: remedyWords(i18n, remedy),
-          })
-        : i18n.t("Please talk to your supervisor before you work in noise again.");
-    return [said, todo];
+  return items.flatMap((item) => {
+    const day = formatDay(item.date, locale);
+    const over = stillOver(item);
+    if (over.length === 0)
+      return [
+        i18n.t("On {day} you were not over the limit after all.", { day }),
+        i18n.t("You need not do anything."),
+      ];
+    const bangs = over
+      .filter(isPeak)
+      .map(({ kind, facts }) =>
+        i18n.t("On {day}: {said}", { day, said: workerSentence(i18n, locale, kind, facts) }),
+      );
+    const noise = over.filter((finding) => !isPeak(finding));
+    return [...(noise.length > 0 ? noiseLines(i18n, locale, item, noise) : []), ...bangs];
   });
 }
 
+/** Of one day's noise as a whole, to the worker: what was too much, and what to do. */
+function noiseLines(
+  i18n: I18n,
+  locale: Locale,
+  { date, atEarDb }: NoticeItem,
+  noise: readonly NoticedFinding[],
+): string[] {
+  const day = formatDay(date, locale);
+  const isOf = (kind: FindingKind) => noise.some((finding) => finding.kind === kind);
+  const said = isOf("no-protector")
+    ? i18n.t("On {day} you worked in loud noise and no hearing protector is assigned to you.", {
+        day,
+      })
+    : isOf("over-limit-at-ear") && atEarDb !== null
+      ? i18n.t("On {day} about {level} decibels reached your ear. That is more than is allowed.", {
+          day,
+          level: formatWholeLevel(atEarDb, locale),
+        })
+      : i18n.t("On {day} the noise around you was more than is allowed.", { day });
+  const [remedy] = noise.flatMap(({ facts }) => remedyOf(facts) ?? []);
+  if (remedy)
+    return [
+      said,
+      i18n.t("Please ask your supervisor for {protector} before you work in noise again.", {
+        protector: remedyWords(i18n, remedy),
+      }),
+    ];
+  const isProtected = !isOf("no-protector") && !isOf("over-limit-at-ear");
+  const [first] = noise;
+  return [
+    said,
+    isProtected && first
+      ? workerSentence(i18n, locale, first.kind, first.facts)
+      : i18n.t("Please talk to your supervisor before you work in noise again."),
+  ];
+}
+
 function crewLines(i18n: I18n, locale: Locale, { items }: NoticeFacts): string[] {
-  return items.map(
-    ({ workerName, employeeNumber, date, kinds, atEarDb, outsideDb, remedy, isStillOver }) => {
-      const head = i18n.t("{name}, {number}, on {day}:", {
-        name: workerName,
-        number: employeeNumber,
-        day: formatDay(date, locale),
-      });
-      const what = isStillOver
-        ? kinds.map((kind) => findingWord(i18n, kind)).join(", ")
-        : i18n.t("no longer over after the correction");
-      const figures = i18n.t("at the ear {atEar}, without protection {outside}", {
-        atEar: formatLevelWithUnit(atEarDb, locale),
-        outside: formatLevelWithUnit(outsideDb, locale),
-      });
-      const todo =
-        isStillOver && remedy
-          ? i18n.t("Give {protector}.", { protector: remedyWords(i18n, remedy) })
-          : "";
-      return [`${head} ${what}`, figures, todo].filter(Boolean).join("\n");
-    },
-  );
+  return items.map((item) => {
+    const head = i18n.t("{name}, {number}, on {day}:", {
+      name: item.workerName,
+      number: item.employeeNumber,
+      day: formatDay(item.date, locale),
+    });
+    const over = stillOver(item);
+    const what =
+      over.length > 0
+        ? over.map(({ kind, facts }) =>
+            kind === "peak-or-ceiling"
+              ? noticedSentence(i18n, locale, kind, facts)
+              : findingWord(i18n, kind),
+          )
+        : [i18n.t("no longer over after the correction")];
+    // A peak is of one moment: the day's levels say nothing of it.
+    const figures =
+      over.every(isPeak) && over.length > 0
+        ? ""
+        : i18n.t("at the ear {atEar}, without protection {outside}", {
+            atEar: formatLevelWithUnit(item.atEarDb, locale),
+            outside: formatLevelWithUnit(item.outsideDb, locale),
+          });
+    const orders = new Set(
+      over.map(({ kind, facts }) => `${orderSentence(i18n, locale, kind, facts)}.`),
+    );
+    return [`${head} ${[...new Set(what)].join("; ")}`, figures, ...orders]
+      .filter(Boolean)
+      .join("\n");
+  });
 }

@@ -23,7 +23,6 @@ interface Ordered {
   sha256: string;
   calibration: RecordingCalibration;
   accepted: RecordingView["accepted"];
-  isKept: boolean;
 }
 type Failure = NonNullable<RecordingView["failure"]>;
 
@@ -33,8 +32,7 @@ const MOST_TRIES = 3;
 /** Takes the recording up, or says that there is nothing to do any more. */
 async function claim(organizationId: string, recordingId: string): Promise<Ordered | null> {
   const found = await row<Ordered & { tries: number }>(
-    `SELECT r.id AS "recordingId", r.revision, r.tries, r.file_id AS "fileId", encode(f.sha256, 'hex') AS sha256, r.calibration, r.accepted,
-       r.delete_on IS NOT NULL AS "isKept"
+    `SELECT r.id AS "recordingId", r.revision, r.tries, r.file_id AS "fileId", encode(f.sha256, 'hex') AS sha256, r.calibration, r.accepted
      FROM recordings r JOIN files f ON f.id = r.file_id WHERE r.id = :recordingId AND r.state IN ('uploaded', 'analysing') FOR UPDATE OF r`,
     { recordingId },
   );
@@ -78,7 +76,8 @@ export async function analyseStoredRecording({
 async function analyse(organizationId: string, ordered: Ordered, watch: Watch): Promise<void> {
   const found = await levelsOrFailure(organizationId, ordered, watch);
   await inTransaction({ organizationId }, async () => {
-    if (!(await isStillOrdered(ordered))) return;
+    const still = await stillOrdered(ordered);
+    if (!still) return;
     if ("code" in found) {
       await (isAcceptable(found.code)
         ? ask(ordered, found)
@@ -88,29 +87,27 @@ async function analyse(organizationId: string, ordered: Ordered, watch: Watch): 
     await execute(
       `UPDATE recordings SET state = 'analysed', analysis = $2::jsonb, failure = NULL, progress_pct = 100, file_id = CASE WHEN $3 THEN file_id END,
          updated_at = now(), revision = revision + 1 WHERE id = $1`,
-      [ordered.recordingId, JSON.stringify(analysisOf(found)), ordered.isKept],
+      [ordered.recordingId, JSON.stringify(analysisOf(found)), still.isKept],
     );
-    if (!ordered.isKept) await dropUnusedFile(organizationId, ordered.fileId);
+    if (!still.isKept) await dropUnusedFile(organizationId, ordered.fileId);
     await recordAudit(
       { organizationId },
       {
         action: "analyse-recording",
         subjectKind: "recording",
         subjectId: ordered.recordingId,
-        values: { isAudioKept: ordered.isKept },
+        values: { isAudioKept: still.isKept },
       },
     );
   });
 }
 
-/** The row is locked, and the order still the one that was taken up. */
-async function isStillOrdered({ recordingId, revision }: Ordered): Promise<boolean> {
-  const still = await row<{ id: string }>(
-    "SELECT id FROM recordings WHERE id = :recordingId AND state = 'analysing' AND revision = :revision FOR UPDATE",
+/** The row, locked, if the order is still the one that was taken up; it may be kept by now. */
+const stillOrdered = ({ recordingId, revision }: Ordered) =>
+  row<{ isKept: boolean }>(
+    `SELECT delete_on IS NOT NULL AS "isKept" FROM recordings WHERE id = :recordingId AND state = 'analysing' AND revision = :revision FOR UPDATE`,
     { recordingId, revision },
   );
-  return still !== null;
-}
 
 async function levelsOrFailure(
   organizationId: string,

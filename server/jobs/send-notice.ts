@@ -1,7 +1,5 @@
-import { remedyOf } from "../../shared/findings/facts";
 import { createI18n, isLocale } from "../../shared/i18n";
-import type { FindingKind } from "../../shared/schemas/finding";
-import { type Mail, type NoticeFacts, overLimitMail } from "../emails/over-limit";
+import { type Mail, type NoticeFacts, type NoticeItem, overLimitMail } from "../emails/over-limit";
 import { recordAudit } from "../lib/audit";
 import { execute, inTransaction, row, rows } from "../lib/db";
 import type { JobPayloads } from "../lib/jobs";
@@ -127,12 +125,15 @@ export async function noticeMail(noticeId: string, publicUrl: string): Promise<M
     { noticeId },
   );
   if (!head) throw new Error("the notice is gone");
-  const items = await rows<Omit<NoticeFacts["items"][number], "remedy"> & { proposed: unknown }>(
-    `SELECT w.name AS "workerName", w.employee_number AS "employeeNumber", i.date::text AS date, array_agg(DISTINCT f.kind) AS kinds,
-       r.at_ear_db AS "atEarDb", r.outside_db AS "outsideDb",
-       bool_or(EXISTS (SELECT 1 FROM finding_evidence e WHERE e.finding_id = f.id AND e.worker_id = i.worker_id AND e.date = i.date)) AS "isStillOver",
-       (array_agg(f.facts->'remedy' ORDER BY f.last_date DESC, f.id) FILTER (WHERE jsonb_typeof(f.facts->'remedy') = 'object'))[1] AS proposed
+  // A finding's facts are those of its latest day: what the item's own day came to takes their place.
+  const items = await rows<NoticeItem>(
+    `SELECT w.name AS "workerName", w.employee_number AS "employeeNumber", i.date::text AS date, r.at_ear_db AS "atEarDb", r.outside_db AS "outsideDb",
+       jsonb_agg(jsonb_build_object('kind', f.kind, 'facts', f.facts || coalesce(own.figures, '{}'),
+         'isStillOver', EXISTS (SELECT 1 FROM finding_evidence e WHERE e.finding_id = f.id AND e.worker_id = i.worker_id AND e.date = i.date))
+         ORDER BY f.last_date DESC, f.id) AS findings
      FROM notice_items i JOIN findings f ON f.id = i.finding_id JOIN workers w ON w.id = i.worker_id JOIN day_results r ON r.id = i.result_id
+     LEFT JOIN LATERAL (SELECT jsonb_build_object('levelDb', c->'levelDb', 'dosePct', c->'dosePct') AS figures FROM jsonb_path_query(r.criteria, '$.governing[*]') c
+       WHERE concat(c->>'ruleSetKey', ':', c->>'criterionId') = f.criterion LIMIT 1) own ON TRUE
      WHERE i.notice_id = :noticeId GROUP BY w.name, w.employee_number, i.date, r.at_ear_db, r.outside_db ORDER BY w.name, i.date`,
     { noticeId },
   );
@@ -141,11 +142,7 @@ export async function noticeMail(noticeId: string, publicUrl: string): Promise<M
   return overLimitMail(i18n, locale, {
     ...head,
     replaces: head.replacesId !== null,
-    items: items.map(({ kinds, proposed, ...item }) => ({
-      ...item,
-      kinds: kinds as FindingKind[],
-      remedy: remedyOf({ remedy: proposed }),
-    })),
+    items,
     link: `${publicUrl}/${head.audience === "worker" ? "" : head.audience === "supervisor" ? "crew-sheet" : "findings"}`,
   });
 }

@@ -4,7 +4,7 @@ import type { z } from "zod";
 import { loadActor } from "../auth/actor";
 import { canonicalJson } from "./audit";
 import { execute, inTransaction, row } from "./db";
-import { AppError, forbidden, fromDatabase, notFound, unprocessable } from "./errors";
+import { AppError, forbidden, fromDatabase, notFound, unprocessable, withSent } from "./errors";
 import { dropStaged, type StagedFile } from "./file-store";
 import type { Actor } from "./policy";
 import { readUpload } from "./upload";
@@ -237,25 +237,28 @@ async function answer(
   const session = request.session;
   if (!session?.userId || !session.organizationId) throw new AppError("signed-out", 401);
   const { userId, organizationId, epoch = 0 } = session;
+  const load = async () => {
+    const actor = await loadActor(userId, epoch);
+    response.locals.language = actor.language;
+    return actor;
+  };
 
   if (spec.streams) {
-    const actor = await inTransaction({ organizationId, readOnly: true }, async () =>
-      loadActor(userId, epoch),
-    );
+    const actor = await inTransaction({ organizationId, readOnly: true }, load);
     authorizeRoute(spec, actor);
     await run(actor);
     return;
   }
   if (spec.upload) {
     await inTransaction({ organizationId, readOnly: true }, async () =>
-      authorizeRoute(spec, await loadActor(userId, epoch)),
+      authorizeRoute(spec, await load()),
     );
     uploaded.staged = await readUpload(request, response, spec.upload);
   }
   const answered = await inTransaction(
     { organizationId, readOnly: readMethods.has(route.method) },
     async () => {
-      const actor = await loadActor(userId, epoch);
+      const actor = await load();
       authorizeRoute(spec, actor);
       const status = spec.status ?? (route.method === "post" && !spec.storesNothing ? 201 : 200);
       const work = async () => {
@@ -283,7 +286,9 @@ export function mountRoutes(router: Router): void {
   for (const route of routes) {
     router[route.method](route.path, (request: Request, response: Response, next: NextFunction) => {
       response.locals.route = `${route.method.toUpperCase()} /api${route.path}`;
-      handle(route, request, response).catch((error) => next(fromDatabase(error)));
+      handle(route, request, response).catch((error) =>
+        next(withSent(fromDatabase(error), request.body)),
+      );
     });
   }
 }

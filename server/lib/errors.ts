@@ -1,5 +1,5 @@
 import { DatabaseError, ForeignKeyConstraintError, UniqueConstraintError } from "sequelize";
-import type { Problem, ProblemCode, ProblemIssue } from "../../shared/schemas/problem";
+import type { ProblemCode, ProblemIssue } from "../../shared/schemas/problem";
 
 /** The one error that becomes an answer. Its code, not its text, says what happened. */
 export class AppError extends Error {
@@ -13,19 +13,6 @@ export class AppError extends Error {
   ) {
     super(code);
   }
-
-  toProblem(requestId: string): Problem {
-    return {
-      type: `/problems/${this.code}`,
-      title: this.code,
-      status: this.status,
-      code: this.code,
-      params: this.params,
-      issues: [...this.issues],
-      requestId,
-      ...this.extra,
-    };
-  }
 }
 
 export const notFound = () => new AppError("not-found", 404);
@@ -38,8 +25,17 @@ export const issue = (
   params: ProblemIssue["params"] = {},
 ): ProblemIssue => ({ path, code, params });
 
-/** A stale revision: both versions go back, so that a person can choose. */
+/** A stale revision: what stands now goes back, so that a person can choose. */
 export const stale = (current: unknown) => new AppError("stale", 412, {}, [], { current });
+
+/** Beside what stands now goes what was sent: both versions of one conflict. */
+export const withSent = (error: unknown, sent: unknown): unknown =>
+  error instanceof AppError && error.status === 412
+    ? new AppError(error.code, error.status, error.params, error.issues, {
+        ...error.extra,
+        yours: sent ?? null,
+      })
+    : error;
 
 /** What a database constraint means to the person who met it. */
 const constraints: Record<string, () => AppError> = {

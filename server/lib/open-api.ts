@@ -1,6 +1,9 @@
 import { z } from "zod";
 import { Problem } from "../../shared/schemas/problem";
+import { CSRF_COOKIE, CSRF_HEADER } from "./csrf";
 import type { Route } from "./endpoint";
+
+const CSRF_DESCRIPTION = `The value of the cookie ${CSRF_COOKIE}, which comes with the sign-in. Every change by a signed-in person carries it; without it the answer is 403 with the code csrf.`;
 
 type Json = Record<string, unknown>;
 
@@ -37,6 +40,7 @@ export function buildOpenApi(routes: readonly Route[], url: string): Json {
   const paths: Record<string, Json> = {};
   for (const { method, path, spec } of routes) {
     const template = path.replace(/:(\w+)/g, "{$1}");
+    const isChange = method !== "get";
     const isCreate = method === "post" && !spec.storesNothing && spec.may !== "public";
     const headers = [
       ...(isCreate
@@ -51,6 +55,17 @@ export function buildOpenApi(routes: readonly Route[], url: string): Json {
         : []),
       ...(spec.needsRevision
         ? [{ name: "If-Match", in: "header", required: true, schema: { type: "string" } }]
+        : []),
+      ...(isChange
+        ? [
+            {
+              name: CSRF_HEADER,
+              in: "header",
+              required: spec.may !== "public",
+              description: CSRF_DESCRIPTION,
+              schema: { type: "string" },
+            },
+          ]
         : []),
     ];
     const status = String(spec.status ?? (isCreate ? 201 : 200));
@@ -73,7 +88,11 @@ export function buildOpenApi(routes: readonly Route[], url: string): Json {
             },
           }
         : {}),
-      ...(spec.may === "public" ? { security: [] } : {}),
+      ...(spec.may === "public"
+        ? { security: [] }
+        : isChange
+          ? { security: [{ session: [], csrf: [] }] }
+          : {}),
       responses: {
         [spec.reply ? status : "204"]: spec.reply
           ? {
@@ -101,7 +120,10 @@ export function buildOpenApi(routes: readonly Route[], url: string): Json {
     security: [{ session: [] }],
     paths,
     components: {
-      securitySchemes: { session: { type: "apiKey", in: "cookie", name: "dinward.sid" } },
+      securitySchemes: {
+        session: { type: "apiKey", in: "cookie", name: "dinward.sid" },
+        csrf: { type: "apiKey", in: "header", name: CSRF_HEADER, description: CSRF_DESCRIPTION },
+      },
       schemas: { Problem: toJson(Problem, "output") },
     },
   };

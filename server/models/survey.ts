@@ -6,7 +6,11 @@ import {
   type Sequelize,
 } from "sequelize";
 import type { HistoryHead, HistoryMapping, HistoryReport } from "../../shared/schemas/history";
-import type { RecordingAnalysis, RecordingCalibration, RecordingView } from "../../shared/schemas/recording";
+import type {
+  RecordingAnalysis,
+  RecordingCalibration,
+  RecordingView,
+} from "../../shared/schemas/recording";
 import type { RiskFactors } from "../../shared/schemas/survey";
 import * as column from "./columns";
 

@@ -137,6 +137,13 @@ async function namesOf(actor: Actor, ids: readonly string[]): Promise<NamedThing
       name: "t.name",
       condition: visible(surveyPolicy, actor, "t"),
     },
+    {
+      kind: "workplace-change",
+      from: "workplace_changes t LEFT JOIN areas a ON a.id = t.area_id LEFT JOIN tasks k ON k.id = t.task_id LEFT JOIN jobs j ON j.id = t.job_id",
+      name: "coalesce(a.name, k.name, j.name)",
+      date: "t.happened_on",
+      condition: visible(surveyPolicy, actor, "t"),
+    },
   ];
   const parts = things.map(
     ({ kind, from, name, date = "NULL::date", code = "NULL", condition }) =>

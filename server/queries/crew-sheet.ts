@@ -3,6 +3,7 @@ import { evaluateDay } from "../../shared/acoustics/day";
 import { buildDayInput, type DayContext } from "../../shared/day/build-day-input";
 import { summarizeDay } from "../../shared/day/summarize-day";
 import { foldOrders, ORDER_KINDS } from "../../shared/findings/orders";
+import { formatTime } from "../../shared/format/date";
 import { ruleSetVersion } from "../../shared/rule-sets";
 import type { CrewSheetRow, CrewSheetView } from "../../shared/schemas/crew";
 import type { FindingKind, FindingState } from "../../shared/schemas/finding";
@@ -14,6 +15,8 @@ import type { Crew } from "../models/worker";
 import { crewPolicy, findingPolicy } from "../policies";
 import { dayFiguresOf } from "./day-figures";
 import { assignmentsOn, crewMembers, gridTasks, lastWearing, modelsOn } from "./day-grid";
+import { RULES_UNTIL } from "./finding-view";
+import { nextShiftDate } from "./next-shift";
 import { settingsInForce } from "./site-settings";
 
 interface OrderRow {
@@ -23,6 +26,7 @@ interface OrderRow {
   state: FindingState;
   facts: Record<string, unknown>;
   lastDate: string;
+  rulesUntil: string | null;
   revision: number;
   siteId: string;
 }
@@ -35,19 +39,21 @@ export async function crewSheet(actor: Actor, crew: Crew): Promise<z.input<typeo
   );
   const timeZone = site?.timeZone ?? "UTC";
   const today = todayAt(timeZone);
-  const settings = await settingsInForce(crew.siteId, today);
-  const members = await crewMembers(crew.id, today);
-  const orders = await openOrders(
-    actor,
-    members.map(({ id }) => id),
-  );
   const last = await row<{ date: string }>(
     "SELECT max(date)::text AS date FROM days WHERE crew_id = :crewId AND date <= CAST(:today AS date) AND current_result_id IS NOT NULL",
     { crewId: crew.id, today },
   );
   const lastDate = last?.date ?? null;
-
-  const expected = await expectedDays(crew, today, members, settings);
+  // A shift that is over and recorded is expected no more.
+  const expectedDate =
+    lastDate === today && isShiftOver(crew, timeZone) ? await nextShiftDate(crew.id, today) : today;
+  const settings = await settingsInForce(crew.siteId, expectedDate);
+  const members = await crewMembers(crew.id, expectedDate);
+  const orders = await openOrders(
+    actor,
+    members.map(({ id }) => id),
+  );
+  const expected = await expectedDays(crew, expectedDate, members, settings);
   const before = lastDate ? await crewMembers(crew.id, lastDate) : [];
   const recorded = lastDate
     ? await dayFiguresOf(
@@ -84,7 +90,7 @@ export async function crewSheet(actor: Actor, crew: Crew): Promise<z.input<typeo
     governingRuleSet: settings.governingRuleSet,
     ruleSetVersion: settings.ruleSetVersion,
     expected: {
-      date: today,
+      date: expectedDate,
       rows: members.map((member) => toRow(member, expected.get(member.id) ?? null)).sort(byUrgency),
     },
     last: {
@@ -92,6 +98,13 @@ export async function crewSheet(actor: Actor, crew: Crew): Promise<z.input<typeo
       rows: before.map((member) => toRow(member, recorded.get(member.id) ?? null)).sort(byUrgency),
     },
   };
+}
+
+/** By the clock of the site; one that runs past midnight is over on the next date only. */
+function isShiftOver({ usualStart, usualLengthMin }: Crew, timeZone: string): boolean {
+  const [hour, minute] = usualStart.split(":").map(Number);
+  const now = formatTime(new Date().toISOString(), timeZone).split(":").map(Number);
+  return (now[0] ?? 0) * 60 + (now[1] ?? 0) >= (hour ?? 0) * 60 + (minute ?? 0) + usualLengthMin;
 }
 
 async function expectedDays(
@@ -159,22 +172,31 @@ async function expectedDays(
   );
 }
 
+/**
+ * One order for each worker, from what the rules that govern now ask for. What rests on earlier rules stays on the sheet,
+ * named as such, only until a day has been judged by the new ones: from then on that day decides, and the finding is the
+ * officer's to close.
+ */
 async function openOrders(
   actor: Actor,
   workerIds: readonly string[],
 ): Promise<Map<string, NonNullable<CrewSheetRow["order"]>>> {
   if (workerIds.length === 0) return new Map();
   const found = await rows<OrderRow>(
-    `SELECT f.worker_id AS "workerId", f.id AS "findingId", f.kind, f.state, f.facts, f.last_date::text AS "lastDate", f.revision, f.site_id AS "siteId" FROM findings f
-     WHERE f.worker_id = ANY (CAST(:ids AS uuid[])) AND f.state <> 'closed' AND ${visible(findingPolicy, actor, "f")}`,
+    `SELECT * FROM (SELECT f.worker_id AS "workerId", f.id AS "findingId", f.kind, f.state, f.facts, f.last_date::text AS "lastDate",
+       ${RULES_UNTIL} AS "rulesUntil", f.revision, f.site_id AS "siteId" FROM findings f
+     WHERE f.worker_id = ANY (CAST(:ids AS uuid[])) AND f.state <> 'closed' AND ${visible(findingPolicy, actor, "f")}) open
+     WHERE "rulesUntil" IS NULL OR NOT EXISTS (SELECT 1 FROM days d WHERE d.worker_id = open."workerId"
+       AND d.date >= CAST(open."rulesUntil" AS date) AND d.current_result_id IS NOT NULL)`,
     { ids: `{${workerIds.join(",")}}` },
   );
   const ofSheet = found.filter(({ kind }) => ORDER_KINDS.includes(kind));
   return new Map(
     [...groupBy(ofSheet, ({ workerId }) => workerId)].map(([workerId, findings]) => {
-      const { findingId, kind, state, facts, revision, siteId } = foldOrders(findings)[0]!.lead;
+      const { siteId, ...lead } = foldOrders(findings)[0]!.lead;
+      const { findingId, kind, state, facts, rulesUntil, revision } = lead;
       const canMarkDone = findingPolicy.can.markDone(actor, { siteId }) && state !== "done";
-      return [workerId, { findingId, kind, state, facts, revision, canMarkDone }];
+      return [workerId, { findingId, kind, state, facts, rulesUntil, revision, canMarkDone }];
     }),
   );
 }

@@ -24,7 +24,7 @@ type Found = Omit<FindingRow, "figures" | "can" | "worker"> & {
 };
 
 /** Since when other rules govern the site than those that a finding rests on. An instrument or a report rests on none. */
-const RULES_UNTIL = `(SELECT coalesce(
+export const RULES_UNTIL = `(SELECT coalesce(
       (SELECT min(later.effective_from) FROM site_settings later WHERE later.site_id = f.site_id AND later.effective_from > f.last_date
         AND later.effective_from <= current_date AND later.governing_rule_set <> rested.key), now.effective_from)::text
     FROM (SELECT coalesce(f.facts->>'ruleSetKey', (SELECT r.governing_rule_set FROM day_results r WHERE r.id = f.last_result_id)) AS key) rested,

@@ -49,8 +49,12 @@ async function measuredDays(actor: Actor, jobId: string) {
 }
 
 /** What the rules at the group's site judge a day without protection by: each action value and limit once. */
-function thresholds(ruleSet: RuleSetVersion, { quantity, exchangeRateDb, thresholdDb }: Criterion) {
+function thresholds(
+  ruleSet: RuleSetVersion,
+  { quantity, exchangeRateDb, thresholdDb, judged }: Criterion,
+) {
   const isSame = (one: Criterion) =>
+    one.judged === judged &&
     one.quantity === quantity &&
     one.exchangeRateDb === exchangeRateDb &&
     one.thresholdDb === thresholdDb;

@@ -254,7 +254,9 @@ export async function historyAnalysis(id: string): Promise<HistoryAnalysis> {
 
 function evenPoints(valuesCount: number): number[] {
   const count = Math.min(POINTS, valuesCount);
-  return Array.from({ length: count }, (_, point) => Math.ceil(((point + 1) * valuesCount) / count));
+  return Array.from({ length: count }, (_, point) =>
+    Math.ceil(((point + 1) * valuesCount) / count),
+  );
 }
 
 const QUARTER_MS = 900_000;

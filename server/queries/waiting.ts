@@ -7,6 +7,7 @@ import { type Actor, visible } from "../lib/policy";
 import { crewPolicy, noticePolicy, programmePolicy, sitePolicy } from "../policies";
 import { findNotices, summarize } from "./entry-notices";
 import { listFindings } from "./finding-view";
+import { nextShiftSql } from "./next-shift";
 
 interface CrewRow {
   id: string;
@@ -14,6 +15,7 @@ interface CrewRow {
   siteId: string;
   timeZone: string;
   date: string;
+  nextDate: string;
   start: string;
   lengthMin: number;
   members: number;
@@ -35,7 +37,7 @@ export async function waitingFor(
     date: todayAt(timeZone),
   }));
   const crews = await rows<CrewRow>(
-    `SELECT c.id, c.name, c.site_id AS "siteId", s.time_zone AS "timeZone", x.date::text AS date, to_char(c.usual_start, 'HH24:MI') AS start, c.usual_length_min AS "lengthMin",
+    `SELECT c.id, c.name, c.site_id AS "siteId", s.time_zone AS "timeZone", x.date::text AS date, (${nextShiftSql("c.id", "x.date")})::text AS "nextDate", to_char(c.usual_start, 'HH24:MI') AS start, c.usual_length_min AS "lengthMin",
        (SELECT count(*)::int FROM crew_memberships m JOIN workers w ON w.id = m.worker_id
         WHERE m.crew_id = c.id AND m.valid @> x.date AND (w.left_on IS NULL OR w.left_on >= x.date)) AS members,
        (SELECT count(*)::int FROM shifts f WHERE f.crew_id = c.id AND f.date = x.date AND NOT f.is_void) AS saved,

@@ -21,7 +21,7 @@ export function defineFindingRoutes(): void {
     "/findings",
     {
       summary: "Findings, soonest due first",
-      may: may.readCrews,
+      may: may.readDays,
       query: FindingFilter,
       reply: FindingPage,
     },

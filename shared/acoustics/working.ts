@@ -10,6 +10,7 @@ import type {
   CriterionResult,
   DayEvaluation,
   DayInput,
+  ReadingInput,
   Reason,
   RuleSetVersion,
   TimedTask,
@@ -264,6 +265,12 @@ class Builder {
               ),
             ]
           : []),
+        ...keptLevels(this.input).map(({ task, why }) =>
+          text(
+            /*i18n*/ "The level of {task} counts all the same: {why}. The result no longer bears the standard's name.",
+            { task: name(task), why: name(why) },
+          ),
+        ),
       ],
       sources: this.noiseSources(),
       records: this.noiseRecords(),
@@ -352,7 +359,7 @@ class Builder {
                 ),
               ]
             : []),
-          ...evaluation.keptReasons.map((why) =>
+          ...keptReadings(readings.map(({ reading }) => reading)).map((why) =>
             text(
               /*i18n*/ "A reading outside its field-check tolerance is kept: {why}. The result no longer bears the standard's name.",
               { why: name(why) },
@@ -1264,4 +1271,21 @@ function settingsText(
           threshold: number(settings.thresholdDb),
         },
       );
+}
+
+/** The officer's reasons for readings that count in spite of what speaks against them. */
+const keptReadings = (readings: readonly ReadingInput[]): string[] => [
+  ...new Set(
+    readings.flatMap(({ covers, keptReason }) =>
+      keptReason === null || covers === "part" ? [] : [keptReason],
+    ),
+  ),
+];
+
+/** The same for the samples behind the tasks' levels, each once a task. */
+function keptLevels({ shifts }: DayInput): { task: string; why: string }[] {
+  const found = new Map<string, { task: string; why: string }>();
+  for (const { name: task, level: taskLevel } of shifts.flatMap(({ tasks }) => tasks))
+    for (const why of taskLevel?.keptReasons ?? []) found.set(`${task} ${why}`, { task, why });
+  return [...found.values()];
 }

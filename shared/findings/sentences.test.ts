@@ -100,7 +100,8 @@ const cases: readonly {
     facts: { levelDb: 141.6, dosePct: null, valueDb: 140, what: "peak" },
     order: "Find the impact, and damp it",
     noticed: "Peak 141.6 dB, limit 140",
-    worker: "There was a very loud bang or noise. Tell your supervisor where it comes from.",
+    worker:
+      "There was a bang of about 142 decibels; no more than 140 is allowed. Tell your supervisor where it comes from.",
   },
   {
     kind: "reading-gap",
@@ -184,6 +185,16 @@ test("a ceiling is told apart from a peak", () => {
   );
   expect(orderSentence(i18n, "en", "peak-or-ceiling", facts)).toBe(
     "Find what was so loud, and bring it down",
+  );
+  expect(workerSentence(i18n, "en", "peak-or-ceiling", facts)).toBe(
+    "For a moment there were about 117 decibels; no more than 115 is allowed. Tell your supervisor where they come from.",
+  );
+});
+
+test("a peak that rounds to its limit is not said to be as much as is allowed", () => {
+  const facts = { levelDb: 140.3, valueDb: 140, what: "peak" };
+  expect(workerSentence(i18n, "en", "peak-or-ceiling", facts)).toBe(
+    "There was a bang of a little more than 140 decibels; no more than 140 is allowed. Tell your supervisor where it comes from.",
   );
 });
 

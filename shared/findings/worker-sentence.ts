@@ -1,5 +1,5 @@
 import type { I18n } from "@lingui/core";
-import { formatWholeLevel } from "../format/level";
+import { formatLimit, formatWholeLevel } from "../format/level";
 import type { Locale } from "../i18n/index";
 import type { FindingKind } from "../schemas/finding";
 import { type FindingFacts, leftOf, numberOf, remedyOf, remedyWords, textOf } from "./facts";
@@ -59,9 +59,7 @@ export function workerSentence(
     case "wearing-unknown":
       return i18n.t("Tell your supervisor how long you wear your protector.");
     case "peak-or-ceiling":
-      return i18n.t(
-        "There was a very loud bang or noise. Tell your supervisor where it comes from.",
-      );
+      return peakSentence(i18n, locale, facts);
     case "time-not-accounted":
       return i18n.t(
         "Tell your supervisor what you did in the time that is missing from your shift.",
@@ -73,4 +71,34 @@ export function workerSentence(
     case "problem-reported":
       return i18n.t("Your safety officer has your report and will talk to you.");
   }
+}
+
+/** A bang or a moment of noise over its own limit, in whole decibels. */
+function peakSentence(i18n: I18n, locale: Locale, facts: FindingFacts): string {
+  const levelDb = numberOf(facts, "levelDb");
+  const valueDb = numberOf(facts, "valueDb");
+  if (levelDb === null || valueDb === null)
+    return i18n.t("There was a very loud bang or noise. Tell your supervisor where it comes from.");
+  const level = formatWholeLevel(levelDb, locale);
+  const limit = formatLimit(valueDb, locale);
+  const isCeiling = textOf(facts, "what") === "ceiling";
+  if (level === limit)
+    return isCeiling
+      ? i18n.t(
+          "For a moment there were a little more than {limit} decibels; no more than {limit} is allowed. Tell your supervisor where they come from.",
+          { limit },
+        )
+      : i18n.t(
+          "There was a bang of a little more than {limit} decibels; no more than {limit} is allowed. Tell your supervisor where it comes from.",
+          { limit },
+        );
+  return isCeiling
+    ? i18n.t(
+        "For a moment there were about {level} decibels; no more than {limit} is allowed. Tell your supervisor where they come from.",
+        { level, limit },
+      )
+    : i18n.t(
+        "There was a bang of about {level} decibels; no more than {limit} is allowed. Tell your supervisor where it comes from.",
+        { level, limit },
+      );
 }

@@ -71,6 +71,8 @@ export const CrewSheetRow = z.object({
       kind: FindingRow.shape.kind,
       state: FindingRow.shape.state,
       facts: z.record(z.string(), z.unknown()),
+      /** It rests on rules that no longer govern the site: the day from which others do. */
+      rulesUntil: FindingRow.shape.rulesUntil,
       revision: z.number(),
       canMarkDone: z.boolean(),
     })

@@ -1,6 +1,6 @@
 import { z } from "zod";
 
-/** Every answer that is not a success has one of these. Texts by locale are the client's. */
+/** Every answer that is not a success has one of these; its texts stand in shared/problems. */
 export const PROBLEM_CODES = [
   "invalid",
   "not-found",
@@ -54,17 +54,23 @@ export const ProblemIssue = z.object({
   path: z.array(z.union([z.string(), z.number()])),
   code: z.string(),
   params: z.record(z.string(), z.union([z.string(), z.number()])).default({}),
+  /** What is wrong there, in the reader's language; an answer has it, a draft of one not yet. */
+  text: z.string().optional(),
 });
 export type ProblemIssue = z.infer<typeof ProblemIssue>;
 
-/** RFC 9457 problem details, with codes instead of sentences. */
+/** RFC 9457 problem details: codes with parameters for programs, title and detail in the reader's language. */
 export const Problem = z.looseObject({
   type: z.string(),
   title: z.string(),
   status: z.number(),
+  detail: z.string(),
   code: z.enum(PROBLEM_CODES),
   params: z.record(z.string(), z.union([z.string(), z.number()])),
   issues: z.array(ProblemIssue),
   requestId: z.string(),
+  /** Of a conflict (412): what stands now, and what was sent. */
+  current: z.unknown().optional(),
+  yours: z.unknown().optional(),
 });
 export type Problem = z.infer<typeof Problem>;

@@ -12,6 +12,8 @@ export const CrewProgress = z.object({
   siteId: z.uuid(),
   timeZone: z.string(),
   date: IsoDate,
+  /** The day after it on which the crew works next, by the weekdays on which it has worked. */
+  nextDate: IsoDate,
   start: z.string(),
   lengthMin: z.number(),
   members: z.number(),

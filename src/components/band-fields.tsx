@@ -8,11 +8,11 @@ import {
   useController,
 } from "react-hook-form";
 import { OCTAVE_BANDS_HZ } from "../../shared/acoustics/types";
-import { parseNumber } from "../../shared/format/number";
 import { useLocale } from "../lib/i18n";
 import { bandLabel } from "./band-picture";
-import { Field, Unreadable } from "./form";
+import { Field } from "./form";
 import { NumberInput, type Typed } from "./number-input";
+import { readBands } from "./read-bands";
 
 export interface BandRow {
   /** Member of the value that holds this row; without it the value is the row itself. */
@@ -22,14 +22,6 @@ export interface BandRow {
 
 const COUNT = OCTAVE_BANDS_HZ.length;
 const emptyRow = (): Typed[] => Array.from({ length: COUNT }, () => null);
-
-/** Values from a spreadsheet or a report: by tabs, lines, semicolons or blanks. */
-function splitPasted(text: string): string[] {
-  return text
-    .trim()
-    .split(/[\t\n\r; ]+/)
-    .filter((part) => part !== "");
-}
 
 interface Fault {
   readonly band: number;
@@ -82,18 +74,10 @@ export function BandFields<Values extends FieldValues, Output>({
   }
 
   function paste(row: BandRow, band: number, text: string): boolean {
-    const parts = splitPasted(text);
-    if (parts.length < 2) return false;
+    const read = readBands(text, locale, band);
+    if (!read) return false;
     const values = [...rowValues(row)];
-    // Eight values are the whole row, and seven the row from 125 Hz on, wherever they were pasted.
-    const from = parts.length === COUNT ? 0 : parts.length === COUNT - 1 ? 1 : band;
-    parts.slice(0, COUNT - from).forEach((part, index) => {
-      const parsed = parseNumber(part, locale);
-      values[from + index] =
-        parsed.kind === "ok"
-          ? parsed.value
-          : new Unreadable(parsed.kind === "ambiguous" ? "ambiguous" : "not-a-number", part);
-    });
+    values.splice(read.from, read.values.length, ...read.values);
     put(row, values);
     return true;
   }

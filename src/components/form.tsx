@@ -25,7 +25,7 @@ import { parseDuration } from "../../shared/format/duration";
 import { editNumber, type Parsed, parseNumber } from "../../shared/format/number";
 import { ApiError } from "../lib/api";
 import { useLocale } from "../lib/i18n";
-import { type FieldIssue, issueText } from "../lib/issue-text";
+import { type FieldIssue, issueText } from "../../shared/problems/issue-text";
 import { Button } from "./button";
 
 /**

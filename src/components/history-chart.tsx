@@ -3,6 +3,7 @@ import { type KeyboardEvent, type ReactNode, useEffect, useId, useRef, useState 
 import { formatDate, formatMonth } from "../../shared/format/date";
 import { formatLevel, formatLimit, formatWholeLevel } from "../../shared/format/level";
 import { useLocale } from "../lib/i18n";
+import { placeLabels } from "./mark-rows";
 
 export interface HistoryDay {
   /** ISO date. */
@@ -29,9 +30,14 @@ export interface HistoryChartProps {
   readonly variant?: "officer" | "worker";
   /** Link to the same as a table. */
   readonly tableLink: ReactNode;
-  readonly lowDb?: number;
-  readonly highDb?: number;
 }
+
+const LOW_DB = 70;
+const HIGH_DB = 90;
+/** A row of a mark's words. */
+const LABEL_ROW_PX = 18;
+/** Of a mark's words, on the wide side: they are placed before they are drawn. */
+const CHARACTER_PX = { officer: 6.6, worker: 7.4 };
 
 const DAY_MS = 86_400_000;
 const dayNumber = (date: string) => Date.parse(date) / DAY_MS;
@@ -60,8 +66,6 @@ export function HistoryChart({
   marks = [],
   variant = "officer",
   tableLink,
-  lowDb = 70,
-  highDb = 90,
 }: HistoryChartProps) {
   const { i18n } = useLingui();
   const locale = useLocale();
@@ -81,18 +85,28 @@ export function HistoryChart({
   }, []);
 
   const levels = days.flatMap((day) => (day.levelDb === null ? [] : [day.levelDb]));
-  // A level beyond the frame widens the frame by whole fives: no day is cut off or drawn where it is not.
-  const bottomDb = Math.min(lowDb, ...levels.map((levelDb) => Math.floor(levelDb / 5) * 5));
-  const topDb = Math.max(highDb, ...levels.map((levelDb) => Math.ceil((levelDb + 1) / 5) * 5));
-  const heightPx = variant === "worker" ? 104 : 150;
+  // A level beyond the frame widens it, below to a line with its figure: no day is cut off or drawn where it is not.
+  const bottomDb = Math.min(LOW_DB, ...levels.map((levelDb) => Math.floor(levelDb / 10) * 10));
+  const topDb = Math.max(HIGH_DB, ...levels.map((levelDb) => Math.ceil((levelDb + 1) / 5) * 5));
+  const plotPx = variant === "worker" ? 104 : 150;
   const rightPx = 36;
   const dayNumbers = days.map((day) => dayNumber(day.date));
   const fromDay = Math.min(...dayNumbers);
   const toDay = Math.max(...dayNumbers);
   const dayPx = (widthPx - rightPx - 10) / Math.max(1, toDay - fromDay);
   const x = (day: number) => 4 + (day - fromDay) * dayPx;
-  const levelPx = (heightPx - 6) / (topDb - bottomDb);
-  const y = (levelDb: number) => heightPx - (levelDb - bottomDb) * levelPx;
+  const levelPx = (plotPx - 6) / (topDb - bottomDb);
+  const y = (levelDb: number) => plotPx - (levelDb - bottomDb) * levelPx;
+  const markX = (mark: HistoryMark) => Math.round(x(dayNumber(mark.date)));
+  const labels = placeLabels(
+    marks.map((mark) => ({
+      lineX: markX(mark),
+      width: mark.label.length * CHARACTER_PX[variant],
+    })),
+    widthPx,
+  );
+  const labelRows = Math.max(0, ...labels.map(({ row }) => row + 1));
+  const heightPx = plotPx + labelRows * LABEL_ROW_PX;
   const lineToX = widthPx - rightPx;
   const tickHalf = variant === "worker" ? 4.5 : 5;
   const guides = Array.from(
@@ -163,23 +177,24 @@ export function HistoryChart({
               </text>
             </>
           )}
-          {marks.map((mark) => {
-            const markX = Math.round(x(dayNumber(mark.date)));
-            const isRight = markX > widthPx / 2;
+          {marks.map((mark, index) => {
+            const label = labels[index];
+            if (!label) return null;
+            const bottomY = plotPx + (label.row + 1) * LABEL_ROW_PX;
             return (
               <g key={mark.date}>
                 <line
                   className="mark-line"
-                  x1={markX}
-                  x2={markX}
+                  x1={markX(mark)}
+                  x2={markX(mark)}
                   y1={limitDb === null ? 6 : y(limitDb) + 8}
-                  y2={heightPx}
+                  y2={bottomY}
                 />
                 <text
                   className="label-mark"
-                  x={markX + (isRight ? -6 : 6)}
-                  y={heightPx - 14}
-                  textAnchor={isRight ? "end" : "start"}
+                  x={label.x}
+                  y={bottomY - 3}
+                  textAnchor={label.isEnd ? "end" : "start"}
                 >
                   {mark.label}
                 </text>

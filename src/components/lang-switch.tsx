@@ -1,9 +1,9 @@
 import { useLingui } from "@lingui/react";
 import { LOCALE_NAMES, LOCALES, type Locale } from "../../shared/i18n/index";
-import { chooseLocale, useLocale } from "../lib/i18n";
+import { chooseLocale, rememberChoice, useLocale } from "../lib/i18n";
 import { TextButton } from "./link";
 
-/** The other languages, each in its own words; works before sign-in. */
+/** The other languages, each in its own words. Before the sign-in nobody keeps the choice, so that it is remembered. */
 export function LangSwitch({ onChosen }: { onChosen?: (locale: Locale) => void }) {
   const { i18n } = useLingui();
   const current = useLocale();
@@ -13,7 +13,9 @@ export function LangSwitch({ onChosen }: { onChosen?: (locale: Locale) => void }
         <TextButton
           key={locale}
           lang={locale}
-          onClick={() => void chooseLocale(i18n, locale).then(() => onChosen?.(locale))}
+          onClick={() =>
+            void chooseLocale(i18n, locale).then(() => (onChosen ?? rememberChoice)(locale))
+          }
         >
           {LOCALE_NAMES[locale]}
         </TextButton>

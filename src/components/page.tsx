@@ -45,19 +45,23 @@ export function RunningHead({
   items = [],
   homeTo = "/",
   title = "Dinward",
+  place,
   account,
 }: {
   items?: readonly NavItem[];
   homeTo?: string;
   title?: string;
+  /** Gets the place beside the mark, for what the page says in the title's stead. */
+  place?: (element: HTMLElement | null) => void;
   account?: ReactNode;
 }) {
   return (
     <header className="running-head">
-      <Link className="brand" to={homeTo}>
+      <Link className="brand" to={homeTo} aria-label={title}>
         <Mark />
-        {title}
+        <span>{title}</span>
       </Link>
+      {place && <div className="running-words" ref={place} />}
       {items.length > 0 && <RunningNav items={items} />}
       {account && <div className="running-account">{account}</div>}
     </header>

@@ -7,6 +7,9 @@ import { type StripWords, stripLabel } from "./strip-label";
 
 const WIDTH_PX = 350;
 const K = 2.1;
+const LINE = 20;
+/** Of the strip's words, on the wide side: they are placed before they are drawn. */
+const CHARACTER = 8;
 
 /** The strip as an arrow in whole decibels: on the worker’s page, where nothing else of a strip is loaded. */
 export function WorkerStrip(props: StripWords) {
@@ -15,7 +18,17 @@ export function WorkerStrip(props: StripWords) {
   const geometry = stripGeometry(props, { widthPx: WIDTH_PX, k: K });
   const { bar, outer, inner, full, limits, boxHeight, width, dotted, chevrons } = geometry;
   const limit = limits[0];
-  const above = 26;
+  const aroundWords = {
+    lower: i18n.t("around you at least"),
+    upper: i18n.t("around you at most"),
+    exact: i18n.t("around you"),
+  }[props.outsideBound];
+  const aroundLevel = formatWholeLevel(props.outsideDb, locale);
+  const around =
+    outer && props.outsideDb !== null
+      ? placeAround(outer.x, limit?.x ?? null, width, `${aroundWords} ${aroundLevel}`)
+      : null;
+  const above = around?.isAbove ? 26 + LINE : 26;
   const below = 28;
   const innerMark = inner ?? full;
   return (
@@ -54,15 +67,14 @@ export function WorkerStrip(props: StripWords) {
           {limit.label}
         </text>
       )}
-      {outer && props.outsideDb !== null && (
+      {around && (
         <text
           className="strip-worker-text"
-          x={limit && outer.x >= limit.x ? Math.max(outer.x - 14, limit.x + 34) : outer.x}
-          y={-8}
-          textAnchor={limit && outer.x < limit.x ? "end" : "start"}
+          x={around.x}
+          y={around.isAbove ? -8 - LINE : -8}
+          textAnchor={around.isLeft ? "end" : "start"}
         >
-          {i18n.t("around you")}{" "}
-          <tspan fontWeight={640}>{formatWholeLevel(props.outsideDb, locale)}</tspan>
+          {aroundWords} <tspan fontWeight={640}>{aroundLevel}</tspan>
         </text>
       )}
       {innerMark && props.atEarDb !== null && (
@@ -73,6 +85,19 @@ export function WorkerStrip(props: StripWords) {
       )}
     </svg>
   );
+}
+
+/**
+ * Where the words for the noise around stand: beside the limit's, on the side of the tick, and a line above them where
+ * they have no room there.
+ */
+function placeAround(outerX: number, limitX: number | null, width: number, words: string) {
+  const length = words.length * CHARACTER;
+  if (limitX !== null && outerX < limitX)
+    return { x: outerX, isLeft: true, isAbove: outerX < length };
+  const x = limitX === null ? outerX - 14 : Math.max(outerX - 14, limitX + 34);
+  if (x + length <= width) return { x, isLeft: false, isAbove: false };
+  return { x: width, isLeft: true, isAbove: limitX !== null && width - length < limitX + 34 };
 }
 
 /** A fall towards the ear: pale as far as the limit, full from there on. */

@@ -124,7 +124,7 @@ export function toProblem(status: number, statusText: string, body: unknown): Ap
     readParams(problem.params),
     readIssues(problem.issues),
     body,
-    typeof problem.title === "string" ? problem.title : statusText,
+    [problem.detail, problem.title].find((text) => typeof text === "string") ?? statusText,
   );
 }
 

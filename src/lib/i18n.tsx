@@ -18,7 +18,7 @@ function readCookie(name: string): string | undefined {
   return entry && decodeURIComponent(entry.slice(name.length + 1));
 }
 
-/** The language chosen on this device, else the browser's. */
+/** Before anybody is signed in: the language last used on this device, else the browser's. */
 function chosenLocale(): Locale {
   const stored = readCookie(LOCALE_COOKIE);
   return isLocale(stored) ? stored : pickLocale(navigator.languages);
@@ -30,7 +30,45 @@ export async function startI18n(): Promise<I18n> {
   return createI18n(locale, ["base"]);
 }
 
-/** Switches the language at once and keeps the choice on this device. */
+/** Chosen while nobody was signed in; kept over the way to the provider and back. */
+const CHOICE_BEFORE_SIGN_IN = "dinward.chosen-locale";
+
+export function rememberChoice(locale: Locale): void {
+  try {
+    sessionStorage.setItem(CHOICE_BEFORE_SIGN_IN, locale);
+  } catch {
+    // A browser without storage: the choice holds until the sign-in.
+  }
+}
+
+function takeChoice(): Locale | null {
+  try {
+    const chosen = sessionStorage.getItem(CHOICE_BEFORE_SIGN_IN) ?? undefined;
+    sessionStorage.removeItem(CHOICE_BEFORE_SIGN_IN);
+    return isLocale(chosen) ? chosen : null;
+  } catch {
+    return null;
+  }
+}
+
+/**
+ * Whoever signs in reads what they chose: on the sign-in page, or earlier. A worker who never chose reads the language of
+ * the worker's record, which the server answers as theirs. Only before the sign-in is it the browser's.
+ */
+export async function readAs(
+  i18n: I18n,
+  ownLanguage: string,
+  keep: (locale: Locale) => Promise<void>,
+): Promise<void> {
+  const chosen = takeChoice();
+  if (chosen !== null) {
+    if (chosen !== ownLanguage) await keep(chosen);
+    return;
+  }
+  if (isLocale(ownLanguage) && ownLanguage !== i18n.locale) await chooseLocale(i18n, ownLanguage);
+}
+
+/** Switches the language at once and keeps it on this device. */
 export async function chooseLocale(i18n: I18n, locale: Locale): Promise<void> {
   await activateLocale(i18n, locale);
   document.documentElement.lang = locale;

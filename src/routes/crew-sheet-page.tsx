@@ -7,6 +7,7 @@ import { ruleSetVersion } from "../../shared/rule-sets";
 import { stripFrame } from "../components/day-figures";
 import { Empty } from "../components/empty";
 import { Failed } from "../components/failed";
+import { InHead } from "../components/in-head";
 import { Folio, PageBody } from "../components/page";
 import { AskOfficer } from "../features/crew-sheet/ask-officer";
 import { crewSheetQueries } from "../features/crew-sheet/queries";
@@ -22,6 +23,7 @@ import {
 } from "../features/crew-sheet/sheet-parts";
 import { useUser } from "../features/session/session";
 import { useLocale } from "../lib/i18n";
+import { useNow } from "../lib/use-now";
 import { paths } from "../paths";
 import "../styles/crew-sheet.css";
 
@@ -66,15 +68,16 @@ function CrewSheet({ crewId }: { crewId: string }) {
   );
   const ruleSet = data ? ruleSetVersion(data.governingRuleSet, data.ruleSetVersion) : null;
   const refresh = () => void sheet.refetch();
+  const now = useNow().toISOString();
+  const isToday =
+    !data || localDateOf(now, data.crew.timeZone) === data.expected.date;
 
   let expected: ReactNode = <LoadingPart name="expected" />;
   let last: ReactNode = <LoadingPart name="last" />;
   let ask: ReactNode = null;
   if (data && frame) {
-    const now = new Date().toISOString();
     const { timeZone, usualStart } = data.crew;
-    const hasStarted =
-      localDateOf(now, timeZone) === data.expected.date && formatTime(now, timeZone) >= usualStart;
+    const hasStarted = isToday && formatTime(now, timeZone) >= usualStart;
     const today = splitExpected(data.expected.rows);
     const common = { crewId, frame, onStale: refresh };
     expected = (
@@ -85,9 +88,15 @@ function CrewSheet({ crewId }: { crewId: string }) {
         frame={frame}
       >
         {data.expected.rows.length === 0 ? (
-          <Empty title={i18n.t("Nobody belongs to this crew today.")} />
+          <Empty
+            title={
+              isToday
+                ? i18n.t("Nobody belongs to this crew today.")
+                : i18n.t("Nobody belongs to this crew then.")
+            }
+          />
         ) : (
-          <SheetRows {...common} part="expected" rows={today} isForToday={() => false} />
+          <SheetRows {...common} part="expected" rows={today} />
         )}
       </SheetFrame>
     );
@@ -102,7 +111,9 @@ function CrewSheet({ crewId }: { crewId: string }) {
           {...common}
           part="last"
           rows={splitLast(data.last.date === null ? [] : data.last.rows, frame.hasLimitAtEar)}
-          isForToday={(row) => isForToday(row, data.expected.rows)}
+          nextSheetOf={(row) =>
+            isForToday(row, data.expected.rows) ? { date: data.expected.date, isToday } : null
+          }
         />
       </SheetFrame>
     );
@@ -120,8 +131,10 @@ function CrewSheet({ crewId }: { crewId: string }) {
     <>
       <PageBody>
         <div className="crew-sheet" data-shows={shows}>
-          <CrewChoice crewId={crewId} crew={data?.crew} crews={data?.crews ?? []} />
-          <FootWords crewId={crewId} shows={shows} />
+          <InHead>
+            <CrewChoice crewId={crewId} crew={data?.crew} crews={data?.crews ?? []} now={now} />
+          </InHead>
+          <FootWords crewId={crewId} shows={shows} isToday={isToday} />
           {sheet.isError && <Failed error={sheet.error} onRetry={refresh} />}
           {!sheet.isError && (
             <div className="sheet-columns">
@@ -164,10 +177,13 @@ function CrewChoice({
   crewId,
   crew,
   crews,
+  now,
 }: {
   crewId: string;
   crew: { name: string; timeZone: string } | undefined;
   crews: readonly { id: string; name: string }[];
+  /** An instant. */
+  now: string;
 }) {
   const { i18n } = useLingui();
   const navigate = useNavigate();
@@ -194,15 +210,24 @@ function CrewChoice({
           ))}
         </select>
       )}
+      {crew && <time className="sheet-clock">{formatTime(now, crew.timeZone)}</time>}
     </div>
   );
 }
 
 /** On a phone one part is shown at a time; its words stand at the foot. */
-function FootWords({ crewId, shows }: { crewId: string; shows: Part }) {
+function FootWords({
+  crewId,
+  shows,
+  isToday,
+}: {
+  crewId: string;
+  shows: Part;
+  isToday: boolean;
+}) {
   const { i18n } = useLingui();
   const words: Record<Part, string> = {
-    expected: i18n.t("Expected today"),
+    expected: isToday ? i18n.t("Expected today") : i18n.t("Expected next"),
     last: i18n.t("Last shift"),
     ask: i18n.t("Ask the officer"),
   };

@@ -148,69 +148,73 @@ function NominalDay({ group }: { group: GroupView }) {
   const { i18n } = useLingui();
   const locale = useLocale();
   return (
-    <DataTable<GroupView["nominalDay"][number]>
-      caption={i18n.t("Nominal day, and as worked")}
-      rows={group.nominalDay}
-      rowKey={({ taskId }) => taskId}
-      empty={
-        <Empty title={i18n.t("Its nominal day names no task.")}>
-          <TextLink to={`${paths.jobs}?edit=${group.jobId}`}>{i18n.t("Change the job")}</TextLink>
-        </Empty>
-      }
-      columns={[
-        {
-          id: "task",
-          head: i18n.t("Task"),
-          isRowHead: true,
-          cell: ({ taskId, taskName }) => <TextLink to={paths.task(taskId)}>{taskName}</TextLink>,
-        },
-        {
-          id: "level",
-          head: i18n.t("Level in force"),
-          unit: "dB(A)",
-          kind: "figure",
-          cell: ({ levelDb }) => formatLevel(levelDb, locale),
-        },
-        {
-          id: "nominal",
-          head: i18n.t("Nominal"),
-          unit: "min",
-          kind: "figure",
-          cell: ({ durationMin }) => formatMinutes(durationMin, locale),
-        },
-        {
-          id: "observed",
-          head: i18n.t("As worked"),
-          unit: i18n.t("min, last 3 months"),
-          kind: "figure",
-          cell: ({ observed, durationMin }) =>
-            observed === null ? (
-              "–"
-            ) : (
-              <span
-                className={isOffNominal(durationMin, observed.meanMin) ? "is-fault" : undefined}
-              >
-                {observed.sdMin === null
-                  ? formatMinutes(observed.meanMin, locale)
-                  : i18n.t("{mean} ± {sd}", {
-                      mean: formatMinutes(observed.meanMin, locale),
-                      sd: formatMinutes(observed.sdMin, locale),
-                    })}
-              </span>
-            ),
-        },
-        {
-          id: "shifts",
-          head: i18n.t("Shifts with it"),
-          kind: "figure",
-          hidesOnPhone: true,
-          cell: ({ observed }) =>
-            observed === null ? "–" : `${observed.count} / ${observed.shiftsCount}`,
-        },
-      ]}
-      foot={i18n.t(
-        "Bold: more than 15 % off the nominal time. The spread of what was worked is the duration’s part of the uncertainty.",
-      )}
-    />
+    <>
+      <DataTable<GroupView["nominalDay"][number]>
+        caption={i18n.t("Nominal day, and as worked")}
+        rows={group.nominalDay}
+        rowKey={({ taskId }) => taskId}
+        empty={
+          <Empty title={i18n.t("Its nominal day names no task.")}>
+            <TextLink to={`${paths.jobs}?edit=${group.jobId}`}>{i18n.t("Change the job")}</TextLink>
+          </Empty>
+        }
+        columns={[
+          {
+            id: "task",
+            head: i18n.t("Task"),
+            isRowHead: true,
+            cell: ({ taskId, taskName }) => <TextLink to={paths.task(taskId)}>{taskName}</TextLink>,
+          },
+          {
+            id: "level",
+            head: i18n.t("Level in force"),
+            unit: "dB(A)",
+            kind: "figure",
+            cell: ({ levelDb }) => formatLevel(levelDb, locale),
+          },
+          {
+            id: "nominal",
+            head: i18n.t("Nominal"),
+            unit: "min",
+            kind: "figure",
+            cell: ({ durationMin }) => formatMinutes(durationMin, locale),
+          },
+          {
+            id: "observed",
+            head: i18n.t("As worked"),
+            unit: i18n.t("min, last 3 months"),
+            kind: "figure",
+            cell: ({ observed, durationMin }) =>
+              observed === null ? (
+                "–"
+              ) : (
+                <span
+                  className={isOffNominal(durationMin, observed.meanMin) ? "is-fault" : undefined}
+                >
+                  {observed.sdMin === null
+                    ? formatMinutes(observed.meanMin, locale)
+                    : i18n.t("{mean} ± {sd}", {
+                        mean: formatMinutes(observed.meanMin, locale),
+                        sd: formatMinutes(observed.sdMin, locale),
+                      })}
+                </span>
+              ),
+          },
+          {
+            id: "shifts",
+            head: i18n.t("Shifts with it"),
+            kind: "figure",
+            hidesOnPhone: true,
+            cell: ({ observed }) =>
+              observed === null ? "–" : `${observed.count} / ${observed.shiftsCount}`,
+          },
+        ]}
+      />
+      <p className="table-foot">
+        {i18n.t(
+          "Bold: more than 15 % off the nominal time. The spread of what was worked is the duration’s part of the uncertainty.",
+        )}
+      </p>
+    </>
   );
 }

@@ -26,7 +26,7 @@ import { draftOf, type MappingDraft, toMapping } from "../features/histories/map
 import { MappingForm } from "../features/histories/mapping-form";
 import { ApiError } from "../lib/api";
 import { useLocale } from "../lib/i18n";
-import { issueText } from "../lib/issue-text";
+import { issueText } from "../../shared/problems/issue-text";
 import { paths } from "../paths";
 import "../styles/histories.css";
 import { MeasuringWays } from "./measuring-frame";

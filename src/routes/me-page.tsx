@@ -43,12 +43,14 @@ function OwnPage({ workerId }: { workerId: string }) {
   const site = sites.find(({ id }) => id === worker.data?.siteId) ?? sites[0];
   const today = localDateOf(new Date().toISOString(), site?.timeZone ?? "UTC");
   const days = useQuery(ownQueries.days(workerId, aYearBefore(today)));
+  const findings = useQuery(ownQueries.findings(workerId));
   const lastDay = days.data?.[0] ?? null;
 
-  const error = worker.error ?? days.error;
+  const error = worker.error ?? days.error ?? findings.error;
   const retry = () => {
     void worker.refetch();
     void days.refetch();
+    void findings.refetch();
   };
   let title: ReactNode = (
     <>
@@ -59,18 +61,18 @@ function OwnPage({ workerId }: { workerId: string }) {
   let more: readonly string[] = [];
   let isLong = false;
   let protectors: ReturnType<typeof protectorsToday> | null = null;
-  if (worker.data && days.data) {
+  if (worker.data && days.data && findings.data) {
     protectors = protectorsToday(worker.data, today, lastDay);
     const [order, ...rest] = whatToDo(i18n, locale, {
       lastDay,
       protectors,
-      assignments: worker.data.assignments,
+      findings: findings.data,
     });
     title = order;
     more = rest;
     isLong = order.length > LONG_TITLE;
   }
-  const part = (content: ReactNode) => (worker.data && days.data ? content : <PartLoading />);
+  const part = (content: ReactNode) => (protectors ? content : <PartLoading />);
 
   if (error)
     return (
@@ -83,7 +85,11 @@ function OwnPage({ workerId }: { workerId: string }) {
     <PageBody size="worker">
       <div className="me" aria-busy={worker.isPending || days.isPending}>
         <h1 className={isLong ? "is-long" : undefined}>{title}</h1>
-        {more.length > 0 && <p className="me-more">{more.join(" ")}</p>}
+        {more.map((sentence) => (
+          <p key={sentence} className="me-more">
+            {sentence}
+          </p>
+        ))}
         <Section title={i18n.t("My protectors")} id="my-protectors">
           {part(<MyProtectors protectors={protectors ?? []} lastDay={lastDay} />)}
         </Section>

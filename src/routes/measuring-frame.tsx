@@ -12,6 +12,7 @@ export function MeasuringWays() {
     { to: paths.surveys, label: i18n.t("Surveys"), isOffice: true },
     { to: paths.outAndBack, label: i18n.t("Out and back"), isOffice: true },
     { to: paths.runs, label: i18n.t("Runs"), isOffice: false },
+    { to: paths.recordings, label: i18n.t("Recordings"), isOffice: true },
     { to: paths.instruments, label: i18n.t("Instruments"), isOffice: false },
   ].filter((item) => isOffice || !item.isOffice);
   // Addresses beneath these belong to others: /measuring/surveys is not "To be measured", /runs/instruments no run.

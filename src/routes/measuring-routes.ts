@@ -21,5 +21,8 @@ export const measuringRoutes: PageRoute[] = [
   { path: paths.instruments, lazy: () => import("./instruments-page"), roles: READERS },
   { path: paths.instrument(":id"), lazy: () => import("./instrument-page"), roles: READERS },
   { path: paths.historyImports, lazy: () => import("./history-imports-page") },
+  { path: paths.history(":id"), lazy: () => import("./history-page") },
   { path: paths.historyImport(":id"), lazy: () => import("./history-import-page") },
+  { path: paths.recordings, lazy: () => import("./recordings-page") },
+  { path: paths.recording(":id"), lazy: () => import("./recording-page") },
 ];

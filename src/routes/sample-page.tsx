@@ -8,7 +8,6 @@ import type { FileView } from "../../shared/schemas/outing";
 import type { RunView } from "../../shared/schemas/run";
 import { findRunDoubts, LEAST_SAMPLE_MIN } from "../../shared/schemas/run-doubts";
 import { localDate } from "../../shared/time/zone";
-import { BandFields } from "../components/band-fields";
 import { Button, ButtonLink } from "../components/button";
 import { ComboboxField } from "../components/combobox-field";
 import { Failed } from "../components/failed";
@@ -27,6 +26,7 @@ import {
 import { FormProblem } from "../components/form-problem";
 import { TextLink } from "../components/link";
 import { Folio, PageBody, PageHead } from "../components/page";
+import { SpectrumField, useSpectrumCheck } from "../components/spectrum-field";
 import { instrumentQueries } from "../features/instruments/queries";
 import { doubtSentence } from "../features/outings/doubt-words";
 import { FileInput } from "../features/outings/file-input";
@@ -84,6 +84,7 @@ export function Component() {
   });
   const values = form.watch() as SampleValues;
   const now = useNow(timerStartedAt !== null);
+  const spectrum = useSpectrumCheck(values.octaveBandsDb, values.levelDb);
 
   useEffect(() => {
     if (saved) return;
@@ -142,6 +143,7 @@ export function Component() {
       );
       return;
     }
+    if (!spectrum.isSettled()) return;
     const startedAt = filled.startedAt ?? startOf(filled.durationMin as number, new Date());
     form.setValue("startedAt", startedAt);
     const body = toSampleInput(filled, {
@@ -368,11 +370,11 @@ export function Component() {
                   unit="dB"
                   isOptional
                 />
-                <BandFields
+                <SpectrumField
                   form={form}
                   name="octaveBandsDb"
                   label={i18n.t("Octave bands")}
-                  rows={[{ label: i18n.t("Level, dB") }]}
+                  check={spectrum}
                 />
                 <CheckField
                   form={form}

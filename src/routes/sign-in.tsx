@@ -1,5 +1,6 @@
 import { useLingui } from "@lingui/react";
 import { useSearchParams } from "react-router-dom";
+import { codeText } from "../../shared/problems/code-text";
 import { LangSwitch } from "../components/lang-switch";
 import { Folio, Page, PageBody, PageHead, RunningHead } from "../components/page";
 
@@ -8,6 +9,12 @@ export function Component() {
   const { i18n } = useLingui();
   const [search] = useSearchParams();
   const returnTo = search.get("returnTo") ?? "/";
+  const minutes = Number(search.get("minutes"));
+  const problem = codeText(
+    i18n,
+    search.get("problem") ?? "",
+    Number.isInteger(minutes) && minutes > 0 ? { minutes } : {},
+  );
   return (
     <Page head={<RunningHead account={<LangSwitch />} />} folio={<Folio />}>
       <PageBody>
@@ -21,6 +28,7 @@ export function Component() {
                 )
           }
         />
+        {problem && <p role="alert">{problem}</p>}
         <p>
           <a
             className="button is-primary"

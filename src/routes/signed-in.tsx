@@ -1,12 +1,14 @@
 import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
-import { lazy, Suspense } from "react";
+import { lazy, Suspense, useState } from "react";
 import { Outlet, useLocation } from "react-router-dom";
 import type { RoleName, SessionUser } from "../../shared/schemas/session";
 import { ConnectionBanner } from "../components/connection-banner";
+import { HeadPlace } from "../components/in-head";
 import { type NavItem, Page, RunningHead } from "../components/page";
 import { AccountActions } from "../features/session/account-actions";
 import { hasRole, useUser } from "../features/session/session";
+import { useIsPhone } from "../lib/use-is-phone";
 import { paths } from "../paths";
 
 /** The pages of each role, those of several roles one after the other. */
@@ -65,6 +67,11 @@ export function SignedIn() {
   const items = useNavigation(user);
   const { pathname, search } = useLocation();
   const isPlain = items.length <= 1;
+  // On the Crew sheet one line says whose it is and the time; a phone has the account at the foot of the page instead.
+  const isSheet = isPlain && hasRole(user, "supervisor");
+  const [place, setPlace] = useState<HTMLElement | null>(null);
+  const isPhone = useIsPhone();
+  const isAccountAtFoot = isSheet && isPhone;
   const whoAndWhat = `${user.name}, ${roleWord(i18n, user.roles)}`;
   return (
     <Page
@@ -76,7 +83,9 @@ export function SignedIn() {
           <RunningHead
             items={isPlain ? [] : items}
             title={hasRole(user, "worker") && isPlain ? user.name : "Dinward"}
+            place={isSheet ? setPlace : undefined}
             account={
+              isAccountAtFoot ? undefined : (
               <>
                 {hasRole(user, "officer", "auditor") && (
                   <Suspense fallback={<SearchBoxFrame />}>
@@ -97,12 +106,21 @@ export function SignedIn() {
                   </Suspense>
                 )}
               </>
+              )
             }
           />
         </>
       }
     >
-      <Outlet />
+      <HeadPlace value={isSheet ? place : undefined}>
+        <Outlet />
+      </HeadPlace>
+      {isAccountAtFoot && (
+        <div className="foot-account">
+          <b>{user.name}</b>
+          <AccountActions />
+        </div>
+      )}
     </Page>
   );
 }

@@ -11,13 +11,14 @@ import { RecomputeProgress } from "../components/change-preview";
 import { DataTable } from "../components/data-table";
 import { Empty } from "../components/empty";
 import { Failed } from "../components/failed";
-import { TextButton } from "../components/link";
+import { TextButton, TextLink } from "../components/link";
 import { Folio, Leaders, MarginNote, PageBody, PageHead, Section } from "../components/page";
 import { areaQueries } from "../features/areas/queries";
 import { LevelForm } from "../features/tasks/level-form";
 import { LevelSource, SurveyOfLevel } from "../features/tasks/level-source";
 import { taskQueries } from "../features/tasks/queries";
 import { Spectrum } from "../features/tasks/spectrum";
+import { SpectrumSource } from "../features/tasks/spectrum-source";
 import { TaskHeadForm } from "../features/tasks/task-head-form";
 import { useLocale } from "../lib/i18n";
 import {
@@ -27,6 +28,7 @@ import {
   settingsWords,
   zoneWord,
 } from "../lib/register-words";
+import { paths } from "../paths";
 import { RuleWays, useSiteChoice } from "./register-frame";
 
 /** One task: its noise in force, all its levels with source and reason, and their correction. */
@@ -190,7 +192,10 @@ export function Component() {
         {level && (
           <Section title={i18n.t("Spectrum in force")} id="spectrum">
             {level.octaveBandsDb ? (
-              <Spectrum octaveBandsDb={level.octaveBandsDb as OctaveBandValues} />
+              <>
+                <Spectrum octaveBandsDb={level.octaveBandsDb as OctaveBandValues} />
+                <SpectrumSource level={level} />
+              </>
             ) : (
               <Empty title={i18n.t("No octave bands were measured.")}>
                 {i18n.t(
@@ -199,6 +204,13 @@ export function Component() {
               </Empty>
             )}
           </Section>
+        )}
+        {can.change && (
+          <p>
+            <TextLink to={`${paths.recordings}?task=${task.id}&site=${task.siteId}`}>
+              {i18n.t("Send a recording of this task in")}
+            </TextLink>
+          </p>
         )}
         <Section title={i18n.t("All levels")} id="levels">
           <DataTable
@@ -265,6 +277,11 @@ export function Component() {
                     {[found.sourceNote || null, found.reason].filter(Boolean).join(". ") ||
                       i18n.t("first level")}
                     {found.surveyId && <SurveyOfLevel level={found} />}
+                    {found.recordingId && (
+                      <TextLink to={paths.recording(found.recordingId)}>
+                        {found.recordingName}
+                      </TextLink>
+                    )}
                     {found.keptReasons.map((reason) => (
                       <b key={reason}>{i18n.t("kept: {reason}", { reason })}</b>
                     ))}

@@ -1,6 +1,6 @@
 import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
-import { useEffect, useMemo, useState } from "react";
+import { useMemo, useState } from "react";
 import { useSearchParams } from "react-router-dom";
 import type { RuleSetVersion } from "../../shared/acoustics/types";
 import { noticedSentence } from "../../shared/findings/sentences";
@@ -15,6 +15,7 @@ import {
 } from "../../shared/format/date";
 import { withinSentence } from "../../shared/format/words";
 import { actionValueDb, mainLimit, ruleSetVersion } from "../../shared/rule-sets";
+import type { FindingRow } from "../../shared/schemas/finding";
 import type { SessionUser } from "../../shared/schemas/session";
 import type { CrewProgress, WaitingView } from "../../shared/schemas/waiting";
 import { addDays } from "../../shared/time/zone";
@@ -25,24 +26,15 @@ import { OutgoingNotice } from "../features/notices/outgoing-notice";
 import { TroubledNotices } from "../features/notices/troubled-notices";
 import { useUser } from "../features/session/session";
 import { CrewRibbon } from "../features/waiting/crew-ribbon";
-import { isBeforeNoise, type Placed, placeFindings } from "../features/waiting/due";
+import { isBeforeNoise, nextShiftOf, type Placed, placeFindings } from "../features/waiting/due";
 import { waitingQuery } from "../features/waiting/queries";
 import { WaitingTable } from "../features/waiting/waiting-table";
 import { useLocale } from "../lib/i18n";
 import { useMoveFocus } from "../lib/move-focus";
+import { useNow } from "../lib/use-now";
 import { paths } from "../paths";
 import "../styles/findings.css";
 import "../styles/waiting.css";
-
-/** The clock, by the minute. */
-function useNow(): Date {
-  const [now, setNow] = useState(() => new Date());
-  useEffect(() => {
-    const timer = setInterval(() => setNow(new Date()), 30_000);
-    return () => clearInterval(timer);
-  }, []);
-  return now;
-}
 
 function siteChoices(user: SessionUser) {
   return user.sites.length > 1 ? user.sites : [];
@@ -63,13 +55,17 @@ export function Component() {
       (id === undefined ? undefined : zones.get(id)) ?? user.sites[0]?.timeZone ?? "UTC";
   }, [user.sites]);
   const todayAt = (id: string) => localDateOf(now.toISOString(), zoneOf(id));
+  const nextShiftAt = (finding: FindingRow) =>
+    nextShiftOf(finding, data?.crews ?? [], {
+      today: todayAt(finding.siteId),
+      time: formatTime(now.toISOString(), zoneOf(finding.siteId)),
+    });
   const { items, toBeChecked } = placeFindings(
     data ? [...data.findings, ...data.toBeChecked] : [],
     todayAt,
+    nextShiftAt,
   );
-  const urgent = items.filter(({ finding }) =>
-    isBeforeNoise(finding, todayAt(finding.siteId)),
-  ).length;
+  const urgent = items.filter(({ finding }) => isBeforeNoise(finding, nextShiftAt(finding))).length;
   const overdue = items.filter(({ group }) => group === "overdue").length;
   const zones = [...new Set((data?.crews ?? []).map(({ timeZone }) => timeZone))];
   const governing = (data?.ruleSets ?? []).flatMap(({ siteName: name, ...one }) => {

@@ -20,7 +20,7 @@ const matrix: Record<string, string> = {
   "GET /crews/:id/days": "officer",
   "GET /crews/:id/sheet": "officer supervisor auditor",
   "GET /entries/:entryId/notices": "officer",
-  "GET /findings": "officer supervisor auditor",
+  "GET /findings": "officer supervisor worker auditor",
   "GET /findings/:id": "officer supervisor worker auditor",
   "GET /notices/:id": "officer supervisor worker auditor",
   "GET /results/:id": "officer supervisor worker auditor",

@@ -52,6 +52,25 @@ describe("GET /api/openapi.json", () => {
     }
   });
 
+  test("every change of a signed-in person names the token it carries, and nothing else does", async () => {
+    const document = await fetchDocument();
+    expect(document.components.securitySchemes.csrf).toMatchObject({
+      type: "apiKey",
+      in: "header",
+      name: "x-csrf-token",
+    });
+    expect(document.components.securitySchemes.csrf.description).toContain("dinward.csrf");
+    for (const { method, path, spec } of routes) {
+      const operation = document.paths[path.replace(/:(\w+)/g, "{$1}")][method];
+      const token = operation.parameters.find(
+        ({ name }: { name: string }) => name === "x-csrf-token",
+      );
+      expect(token !== undefined, path).toBe(method !== "get");
+      if (method !== "get" && spec.may !== "public")
+        expect(operation.security, path).toEqual([{ session: [], csrf: [] }]);
+    }
+  });
+
   test("every reference in it leads somewhere", async () => {
     const document = await fetchDocument();
     const references = [...JSON.stringify(document).matchAll(/"\$ref":"([^"]+)"/g)].map(

@@ -389,7 +389,7 @@ describe("a site's rules", () => {
 });
 
 describe("a change names the revision it saw", () => {
-  test("a stale one gets 412 with the row as it stands, a missing one 428", async () => {
+  test("a stale one gets 412 with the row as it stands and what was sent, a missing one 428", async () => {
     const site = await buildSite();
     const area = await buildArea({ site, name: "Stores" });
     const client = await officerAt(site.organizationId);
@@ -400,6 +400,7 @@ describe("a change names the revision it saw", () => {
     expect(stale.body).toMatchObject({
       code: "stale",
       current: { name: "Old stores", revision: 2 },
+      yours: { siteId: site.id, name: "New stores" },
     });
     const missing = await client.send({ method: "put", path: `/areas/${area.id}`, body });
     expect(missing.status).toBe(428);

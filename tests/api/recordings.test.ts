@@ -51,6 +51,9 @@ function filesOf({ organizationId }: Site): string[] {
   );
 }
 
+/** What is dropped on the way in goes just after the answer. */
+const expectNoFile = (site: Site) => expect.poll(() => filesOf(site)).toEqual([]);
+
 // An amplitude of 0.1 at 20 Pa full scale is a crest of 2 Pa: 20 lg(2/√2/20 µPa).
 const TONE_DB = 20 * Math.log10(2 / Math.SQRT2 / 20e-6);
 
@@ -177,7 +180,7 @@ describe("who may send a recording or a tone in", () => {
       expect((await send(await userAt(site, "auditor"))).status).toBe(403);
       expect((await send(await userAt(await buildSite(), "officer"))).status).toBe(404);
     }
-    expect(filesOf(site)).toEqual([]);
+    await expectNoFile(site);
   });
 
   test("422 for what is no WAV, for a date without a reason, for a date that has been", async () => {
@@ -199,7 +202,7 @@ describe("who may send a recording or a tone in", () => {
     expect(await send({ calibration: { kind: "guess" } })).toMatchObject([
       { path: ["calibration", "kind"] },
     ]);
-    expect(filesOf(site)).toEqual([]);
+    await expectNoFile(site);
     expect(await select("SELECT 1 FROM recordings WHERE site_id = $1", [site.id])).toEqual([]);
   });
 });
@@ -222,7 +225,7 @@ describe("a recording is analysed and its audio goes", { timeout: 60_000 }, () =
     );
     expect(octave.levelDb).toBeCloseTo(TONE_DB, 0);
     expect(first.thirdOctavesDb.length).toBeGreaterThan(27);
-    expect(filesOf(site)).toEqual([]);
+    await expectNoFile(site);
     expect(
       await select("SELECT 1 FROM files WHERE organization_id = $1", [site.organizationId]),
     ).toEqual([]);
@@ -261,11 +264,28 @@ describe("a recording is analysed and its audio goes", { timeout: 60_000 }, () =
     expect(filesOf(site)).toHaveLength(1);
     await owner().query("UPDATE recordings SET delete_on = current_date WHERE id = $1", [body.id]);
     await lookAfter();
-    expect(filesOf(site)).toEqual([]);
+    await expectNoFile(site);
     const after = await client.get(`/recordings/${body.id}`);
     expect(after.body).toMatchObject({ fileId: null, state: "analysed" });
     expect(after.body.analysis).toEqual(body.analysis);
     expect((await client.get("/recordings?isKept=yes")).body.rows).toEqual([]);
+  });
+
+  test("kept while it is being analysed it stays, and the analysis goes on", {
+    timeout: 60_000,
+  }, async () => {
+    const { site, task, client } = await buildPlace();
+    const content = soundFile([sine(60, 0.1), sine(60, 0.1)]);
+    const { body } = await sendRecording(client, { taskId: task.id, content });
+    const work = analyse(site, body.id);
+    const path = `/recordings/${body.id}`;
+    await expect.poll(async () => (await client.get(path)).body.state).toBe("analysing");
+    const keeping = { keepReason: "to listen to it again", deleteOn: daysFromToday(3) };
+    expect((await client.post(`${path}/keeping`, keeping)).status).toBe(200);
+    await work;
+    const kept = (await client.get(path)).body;
+    expect([kept.state, kept.fileId === null]).toEqual(["analysed", false]);
+    expect(filesOf(site)).toHaveLength(1);
   });
 
   test("the same sound sent twice: the one that is kept stays when the other goes", async () => {
@@ -280,7 +300,7 @@ describe("a recording is analysed and its audio goes", { timeout: 60_000 }, () =
     await analyse(site, other.body.id);
     expect(filesOf(site)).toHaveLength(1);
     await client.post(`/recordings/${kept.body.id}/audio-deletion`, {});
-    expect(filesOf(site)).toEqual([]);
+    await expectNoFile(site);
   });
 
   test.each([
@@ -297,7 +317,7 @@ describe("a recording is analysed and its audio goes", { timeout: 60_000 }, () =
     await analyse(site, sent.body.id);
     const { body } = await client.get(`/recordings/${sent.body.id}`);
     expect(body).toMatchObject({ state: "failed", failure: { code }, fileId: null });
-    expect(filesOf(site)).toEqual([]);
+    await expectNoFile(site);
   });
 
   test.each([
@@ -317,7 +337,7 @@ describe("a recording is analysed and its audio goes", { timeout: 60_000 }, () =
     const { body } = await client.get(path);
     expect(body).toMatchObject({ state: "analysed", accepted: [{ code, reason }] });
     expect(body.analysis.faults).toMatchObject([{ code }]);
-    expect(filesOf(site)).toEqual([]);
+    await expectNoFile(site);
     // Whatever uses it says so.
     await client.post(`${path}/adoption`, { ...adoption, how: "level" });
     const level = (await client.get(`/tasks/${task.id}`)).body.levels[0];
@@ -349,7 +369,7 @@ describe("cancelling", () => {
       const { id } = await buildRecording({ site, state });
       const answer = await client.post(`/recordings/${id}/cancel`, {});
       expect(answer.body).toMatchObject({ state: "cancelled", fileId: null, analysis: null });
-      expect(filesOf(site)).toEqual([]);
+      await expectNoFile(site);
       await analyse(site, id);
       expect((await client.get(`/recordings/${id}`)).body.state).toBe("cancelled");
       expect((await client.post(`/recordings/${id}/cancel`, {})).body.code).toBe("wrong-state");
@@ -366,7 +386,7 @@ describe("cancelling", () => {
     await client.post(`/recordings/${sent.body.id}/cancel`, {});
     await work;
     expect(await state()).toBe("cancelled");
-    expect(filesOf(site)).toEqual([]);
+    await expectNoFile(site);
   });
 });
 
@@ -379,7 +399,7 @@ describe("a calibrator's tone", () => {
     // 94 dB are 1.0024 Pa; at an amplitude of 0.2 full scale is at 1.0024·√2/0.2.
     const expected = (20e-6 * 10 ** (94 / 20) * Math.SQRT2) / 0.2;
     expect(tone.body.channels[0].pascalPerFullScale).toBeCloseTo(expected, 2);
-    expect(filesOf(site)).toEqual([]);
+    await expectNoFile(site);
     const sent = await sendRecording(client, {
       taskId: task.id,
       content: soundFile([sine(2, 0.02)]),
@@ -420,7 +440,7 @@ describe("a calibrator's tone", () => {
     const { site, task, client } = await buildPlace();
     const answer = await sendTone(client, { taskId: task.id, toneDb: "94" }, soundFile([samples]));
     expect([answer.status, answer.body.issues]).toMatchObject([422, [{ path: ["file"], code }]]);
-    expect(filesOf(site)).toEqual([]);
+    await expectNoFile(site);
   });
 });
 

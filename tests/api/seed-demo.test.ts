@@ -73,6 +73,8 @@ test("filled twice on one day it shows the same numbers", async () => {
      FROM findings f LEFT JOIN workers w ON w.id = f.worker_id LEFT JOIN jobs j ON j.id = f.job_id LEFT JOIN instruments i ON i.id = f.instrument_id
      ORDER BY 1, 2, 3, 4, 5`,
     "SELECT u.name, n.audience, n.state, count(*) FROM notices n JOIN users u ON u.id = n.recipient_id GROUP BY 1, 2, 3 ORDER BY 1, 2, 3",
+    `SELECT h.starts_at, i.serial_number, h.values_count, c.channel, c.position, md5(c.packed)
+     FROM time_histories h JOIN instruments i ON i.id = h.instrument_id JOIN time_history_chunks c ON c.history_id = h.id ORDER BY 1, 2, 4, 5`,
   ];
   for (const question of questions) {
     const once = await ask(0, question);
@@ -115,4 +117,100 @@ test("the local sign-in knows somebody for each role, and the code of the worker
   expect(
     people.filter(({ note }) => /printed code [A-Z2-9]{4}-[A-Z2-9]{4}-[A-Z2-9]{4}$/.test(note)),
   ).toHaveLength(1);
+});
+
+test("every task has a spectrum and LC − LA, and most levels rest on a survey with its samples", async () => {
+  const inForce = `SELECT DISTINCT ON (t.id) t.name, l.* FROM tasks t JOIN task_levels l ON l.task_id = t.id ORDER BY t.id, l.effective_from DESC, l.number DESC`;
+  expect(
+    await ask(
+      0,
+      `SELECT t.name FROM tasks t LEFT JOIN (${inForce}) l ON l.task_id = t.id WHERE l.octave_bands_db IS NULL OR l.lc_minus_la_db IS NULL`,
+    ),
+  ).toEqual([]);
+  expect(
+    await ask(0, `SELECT l.name FROM (${inForce}) l WHERE l.survey_id IS NULL ORDER BY 1`),
+  ).toEqual(["Core making", "Forklift", "Picking"]);
+  // Each sample is a run of its own, and the level is near the middle of them.
+  expect(
+    await ask(
+      0,
+      `SELECT l.name FROM (${inForce}) l WHERE l.survey_id IS NOT NULL AND ((SELECT count(DISTINCT run_id) FROM task_level_samples s WHERE s.task_level_id = l.id) <> 3
+         OR abs((SELECT avg(s.level_db) FROM task_level_samples s WHERE s.task_level_id = l.id) - l.level_db) > 0.2)`,
+    ),
+  ).toEqual([]);
+});
+
+test("surveys by each strategy, one planned with a draw and instruments, one half taken", async () => {
+  expect(await ask(0, "SELECT DISTINCT strategy, state FROM surveys ORDER BY 1, 2")).toEqual([
+    "full-day | done",
+    "full-day | planned",
+    "job | done",
+    "task | done",
+    "task | measuring",
+    "task | planned",
+  ]);
+  expect(
+    await ask(
+      0,
+      `SELECT (SELECT string_agg(DISTINCT p.part, ', ' ORDER BY p.part) FROM survey_people p WHERE p.survey_id = y.id), (SELECT count(*) FROM instrument_reservations v WHERE v.survey_id = y.id)
+       FROM surveys y WHERE y.state = 'planned' AND y.strategy = 'task'`,
+    ),
+  ).toEqual(["drawn, reserve | 2"]);
+  const answers = `SELECT y.name FROM surveys y, jsonb_each(y.risk_factors) f WHERE f.value->>'answer' IS NULL`;
+  expect(await ask(0, answers)).toEqual([]);
+  // By hand, or bracketed under a history: five of the nine that are wanted.
+  expect(
+    await ask(
+      0,
+      `SELECT (SELECT sum(samples_count) FROM survey_targets t WHERE t.survey_id = y.id),
+         (SELECT count(*) FROM runs r WHERE r.survey_id = y.id AND r.task_id IS NOT NULL)
+         + (SELECT count(*) FROM runs r JOIN time_histories h ON h.run_id = r.id JOIN time_history_revisions v ON v.id = h.current_revision_id,
+              jsonb_array_elements(v.stretches) x WHERE r.survey_id = y.id AND r.task_id IS NULL AND x->>'kind' = 'task')
+       FROM surveys y WHERE y.state = 'measuring'`,
+    ),
+  ).toEqual(["9 | 5"]);
+});
+
+test("a dozen shifts were logged, one with a stretch left out, one with LAeq alone, and a sample at 1/8 s", async () => {
+  const [shifts] = await ask(
+    0,
+    "SELECT count(*) FROM time_histories WHERE interval_ms = 1000 AND values_count >= 28800",
+  );
+  expect(Number(shifts)).toBe(12);
+  expect(await ask(0, "SELECT values_count FROM time_histories WHERE interval_ms = 125")).toEqual([
+    "14400",
+  ]);
+  expect(await ask(0, "SELECT count(*) FROM time_histories WHERE channels = '{laeq}'")).toEqual([
+    "1",
+  ]);
+  expect(
+    await ask(
+      0,
+      `SELECT r.source, count(DISTINCT v.number) FROM time_histories h JOIN time_history_revisions q ON q.id = h.current_revision_id
+       JOIN runs u ON u.id = h.run_id JOIN run_revisions v ON v.run_id = u.id JOIN readings r ON r.run_revision_id = u.current_revision_id
+       WHERE q.stretches @> '[{"kind": "left-out"}]' GROUP BY 1`,
+    ),
+  ).toEqual(["history | 4"]);
+});
+
+test("one instrument is out, two are back, and one failed its calibration with runs since its last good check", async () => {
+  expect(
+    await ask(
+      0,
+      `SELECT i.serial_number, r.is_out FROM runs r JOIN instruments i ON i.id = r.instrument_id JOIN sites s ON s.id = r.site_id
+       WHERE r.date = (now() AT TIME ZONE s.time_zone)::date ORDER BY 1`,
+    ),
+  ).toEqual(["OD 40117 | true", "OD 40118 | false", "OD 40121 | false"]);
+  const [doubtful] = await ask(
+    0,
+    `SELECT count(*) FROM runs r JOIN instruments i ON i.id = r.instrument_id JOIN run_revisions v ON v.id = r.current_revision_id
+     WHERE NOT (SELECT c.has_passed FROM instrument_calibrations c WHERE c.instrument_id = i.id ORDER BY c.done_on DESC LIMIT 1) AND v.check_after_db IS NULL`,
+  );
+  expect(Number(doubtful)).toBeGreaterThan(2);
+  expect(
+    await ask(
+      0,
+      "SELECT count(*) FROM run_revisions WHERE 'field-check-drift' = ANY (doubts) AND kept_reason IS NOT NULL",
+    ),
+  ).toEqual(["2"]);
 });

@@ -147,7 +147,9 @@ describe("sign-in", () => {
     await buildUser({ organizationId, email, roles: ["officer"] });
     const visitor = new Visitor();
     await visitor.signIn(signInAddress(), sub);
-    expect((await post(visitor, "/auth/sign-out", {}, "wrong")).status).toBe(403);
+    const forged = await post(visitor, "/auth/sign-out", {}, "wrong");
+    expect(forged.status).toBe(403);
+    expect((await forged.json()).detail).toMatch(/dinward\.csrf.*x-csrf-token/);
     const foreign = await visitor.request(`${publicUrl}/api/auth/sign-out`, {
       method: "POST",
       headers: {
@@ -224,8 +226,81 @@ describe("sign-in", () => {
     for (let tries = 0; tries < 12; tries += 1)
       last = await post(visitor, "/auth/worker-code", { employeeNumber: "1", code: "AAAA-BBBB" });
     expect(last?.status).toBe(429);
-    expect(await last?.json()).toMatchObject({ code: "too-many-tries", params: { minutes: 15 } });
+    expect(Number(last?.headers.get("retry-after"))).toBeGreaterThan(800);
+    expect(await last?.json()).toMatchObject({
+      code: "too-many-tries",
+      params: { minutes: 15 },
+      title: "Too many tries",
+      detail: "Too many tries. Wait 15 minutes, then try again.",
+    });
     await select("DELETE FROM rate_limits");
+  });
+
+  test("a whole crew signs in from one address; what does not end well is stopped, and said in a page", async () => {
+    await select("DELETE FROM rate_limits");
+    const { email, sub } = person();
+    await buildUser({ email, roles: ["officer"] });
+    const counted = async () =>
+      (
+        await select<{ hits: number }>(
+          "SELECT hits FROM rate_limits WHERE key LIKE 'sign-in-unfinished:%'",
+        )
+      )[0]?.hits;
+    for (let crew = 0; crew < 3; crew += 1) {
+      const { url } = await new Visitor().signIn(signInAddress(), sub);
+      expect(url.pathname).toBe("/findings");
+    }
+    expect(await counted()).toBe(0);
+
+    // Going back and beginning again in the same browser is one try.
+    const hesitant = new Visitor();
+    for (let times = 0; times < 3; times += 1) await hesitant.request(signInAddress());
+    expect(await counted()).toBe(1);
+    await hesitant.signIn(signInAddress(), sub);
+    expect(await counted()).toBe(0);
+
+    // Answers that no sign-in asked for count one each.
+    for (let tries = 0; tries < 2; tries += 1)
+      await new Visitor().request(`${publicUrl}/api/auth/callback?error=access_denied&state=x`);
+    expect(await counted()).toBe(2);
+
+    await select("UPDATE rate_limits SET hits = 60 WHERE key LIKE 'sign-in-unfinished:%'");
+    const program = await new Visitor().request(signInAddress());
+    expect(program.status).toBe(429);
+    expect(program.headers.get("content-type")).toContain("application/problem+json");
+    expect(Number(program.headers.get("retry-after"))).toBeGreaterThan(0);
+    const page = await new Visitor().request(signInAddress(), {
+      headers: { accept: "text/html,application/xhtml+xml,*/*;q=0.8" },
+    });
+    expect(page.status).toBe(302);
+    expect(page.headers.get("location")).toMatch(
+      /^\/sign-in\?problem=too-many-tries&minutes=\d+&returnTo=%2Ffindings$/,
+    );
+    await select("DELETE FROM rate_limits");
+  });
+
+  test("problems are told in the reader's language: the request's, else the person's own", async () => {
+    const site = await buildSite();
+    const user = await buildUser({
+      organizationId: site.organizationId,
+      roles: ["officer"],
+      language: "de",
+    });
+    const client = await signInAs(user);
+    const missing = "/workers/00000000-0000-4000-8000-000000000000";
+    const own = await client.get(missing);
+    expect(own.headers["content-language"]).toBe("de");
+    expect(own.body).toMatchObject({
+      code: "not-found",
+      detail: "Es gibt das nicht, oder es ist nicht für Sie bestimmt.",
+    });
+    const inEnglish = await fetch(`${publicUrl}/api/workers/x`, {
+      headers: { "accept-language": "fr, en;q=0.8, de;q=0.5" },
+    });
+    expect(await inEnglish.json()).toMatchObject({
+      title: "Not signed in",
+      detail: "You have been signed out. Sign in again; what you typed is kept.",
+    });
   });
 
   test("security headers: a strict content policy, no framing, no sniffing", async () => {

@@ -6,7 +6,7 @@ import { TextButton } from "../../components/link";
 import type { StripFrame } from "../../components/strip-of-day";
 import { numberWord } from "./number-words";
 import type { PartName, SheetPart } from "./sheet-parts";
-import { SheetRow } from "./sheet-row";
+import { type NextSheet, SheetRow } from "./sheet-row";
 
 /** Of those with nothing to do, so many stand here at once. */
 const SHOWN_AT_ONCE = 3;
@@ -55,14 +55,14 @@ export function SheetRows({
   rows,
   crewId,
   frame,
-  isForToday,
+  nextSheetOf = () => null,
   onStale,
 }: {
   part: PartName;
   rows: SheetPart;
   crewId: string;
   frame: StripFrame | null;
-  isForToday: (row: CrewSheetRow) => boolean;
+  nextSheetOf?: (row: CrewSheetRow) => NextSheet | null;
   onStale: () => void;
 }) {
   const { i18n } = useLingui();
@@ -81,7 +81,7 @@ export function SheetRows({
             {...common}
             row={row}
             isFlagged
-            isForToday={isForToday(row)}
+            nextSheet={nextSheetOf(row)}
           />
         ))}
       </ul>

@@ -2,6 +2,7 @@ import { describe, expect, test } from "vitest";
 import type { CrewSheetRow } from "../../../shared/schemas/crew";
 import { testI18n } from "../../lib/test-i18n";
 import {
+  asksAboutDay,
   expectedTitle,
   isForToday,
   lastTitle,
@@ -40,6 +41,7 @@ const order = (facts: Partial<Order> = {}): Order => ({
   kind: "protects-too-little",
   state: "new",
   facts: {},
+  rulesUntil: null,
   revision: 1,
   canMarkDone: true,
   ...facts,
@@ -99,6 +101,27 @@ describe("last shift", () => {
     expect(names(part.quiet)).toEqual(["Nwosu"]);
     expect(names(part.open)).toEqual(["Wetherell"]);
     expect(names(part.absent)).toEqual(["Achterberg"]);
+  });
+
+  test("under the limit with a protector at fault is not Under: the faults follow, too little first", () => {
+    const part = splitLast(
+      [
+        row("Nwosu"),
+        row("Lindqvist", { figures: figures({ word: "too-much" }), order: order() }),
+        row("Castellow", { figures: figures({ word: "too-little" }) }),
+        ...rows.slice(1, 3),
+      ],
+      true,
+    );
+    expect(names(part.flagged)).toEqual(["Tavernor", "Dąbrowik", "Castellow", "Lindqvist"]);
+    expect(names(part.quiet)).toEqual(["Nwosu"]);
+  });
+
+  test("an order that asks about the day heads its row until it is done", () => {
+    const asked = order({ kind: "not-worn-long-enough" });
+    expect(asksAboutDay(row("Dąbrowik", { order: asked }))).toBe(true);
+    expect(asksAboutDay(row("Dąbrowik", { order: { ...asked, state: "done" } }))).toBe(false);
+    expect(asksAboutDay(row("Tavernor", { order: order() }))).toBe(false);
   });
 
   test("the title counts both", () => {

@@ -50,6 +50,15 @@ function isOverLimitOutside({
   );
 }
 
+/** Under the limit by luck, or unable to hear a warning: a protector at fault, the worse first. */
+const FAULTS: readonly string[] = ["too-little", "too-much"];
+const hasWordFault = ({ figures }: CrewSheetRow): boolean =>
+  figures !== null && figures.word !== null && FAULTS.includes(figures.word);
+
+/** An order that asks about the day itself is what its row is headed by, or the two would contradict each other. */
+export const asksAboutDay = ({ order }: CrewSheetRow): boolean =>
+  order !== null && order.state !== "done" && ABOUT_THE_PAST.has(order.kind);
+
 export const isOpenOrder = ({ order }: CrewSheetRow): boolean =>
   order !== null && order.state !== "done";
 
@@ -73,12 +82,16 @@ export function splitLast(rows: readonly CrewSheetRow[], hasLimitAtEar: boolean)
     return (
       verdict === "over" ||
       verdict === "cant-tell-yet" ||
+      hasWordFault(row) ||
       (row.figures !== null && row.order !== null && ABOUT_THE_PAST.has(row.order.kind))
     );
   };
   const rest = present.filter((row) => !isFlagged(row));
-  const rank = (row: CrewSheetRow) => ["over", "cant-tell-yet"].indexOf(verdictOf(row) ?? "");
-  const place = (row: CrewSheetRow) => (rank(row) === -1 ? 2 : rank(row));
+  const place = (row: CrewSheetRow) => {
+    if (verdictOf(row) === "over") return 0;
+    if (verdictOf(row) === "cant-tell-yet") return 1;
+    return hasWordFault(row) ? FAULTS.indexOf(row.figures?.word ?? "") + 2 : 4;
+  };
   return {
     flagged: present.filter(isFlagged).sort((a, b) => place(a) - place(b)),
     quiet: rest.filter((row) => verdictOf(row) === "under"),

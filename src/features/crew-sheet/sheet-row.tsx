@@ -1,10 +1,13 @@
+import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { remedyOf, remedyWords } from "../../../shared/findings/facts";
 import { asReason, reasonText } from "../../../shared/findings/reasons";
 import { noticedSentence, orderSentence, remedyFigure } from "../../../shared/findings/sentences";
 import { findingWord } from "../../../shared/findings/words";
+import { formatDate, formatDay } from "../../../shared/format/date";
 import { formatLimit } from "../../../shared/format/level";
 import { withinSentence } from "../../../shared/format/words";
+import type { Locale } from "../../../shared/i18n/index";
 import type { CrewSheetRow } from "../../../shared/schemas/crew";
 import type { DayFigures } from "../../../shared/schemas/finding";
 import { outsideVerdict } from "../../components/day-figures";
@@ -16,7 +19,7 @@ import { Verdict } from "../../components/verdict";
 import { useLocale } from "../../lib/i18n";
 import { OrderActions } from "./order-actions";
 import type { SheetOrder } from "./queries";
-import { type PartName, sheetVerdict } from "./sheet-parts";
+import { asksAboutDay, type PartName, sheetVerdict } from "./sheet-parts";
 
 const STRIP_PX = 200;
 
@@ -86,7 +89,7 @@ function RowWord({
     if (verdict === "cant-tell-yet" || verdict === "not-assessed")
       return <Verdict verdict={verdict} />;
   }
-  if (order && part === "expected") return <b>{findingWord(i18n, order.kind)}</b>;
+  if (order && (part === "expected" || (figures && asksAboutDay(row)))) return <b>{findingWord(i18n, order.kind)}</b>;
   if (!figures) return <Verdict verdict="not-assessed" />;
   if (figures.word !== null) {
     const isFault = figures.word === "too-little" || figures.word === "too-much";
@@ -106,7 +109,13 @@ function Noticed({ order }: { order: SheetOrder }) {
   const figure = remedyFigure(locale, order.facts, (word) => protectorWordText(i18n, word));
   return (
     <>
-      {i18n.t("{sentence}.", { sentence: noticed })}
+      {i18n.t("{sentence}.", {
+        sentence: order.rulesUntil
+          ? `${noticed}; ${i18n.t("under the rules before {date}", {
+              date: formatDate(order.rulesUntil, locale),
+            })}`
+          : noticed,
+      })}
       {remedy && figure && (
         <>
           {" "}
@@ -121,6 +130,17 @@ function Noticed({ order }: { order: SheetOrder }) {
 const reasonOf = (figures: DayFigures) =>
   figures.word !== null || figures.hasProtector === "no" ? null : asReason(figures.reason);
 
+export interface NextSheet {
+  readonly date: string;
+  readonly isToday: boolean;
+}
+
+function onNextSheet(i18n: I18n, locale: Locale, { date, isToday }: NextSheet, order: string) {
+  return isToday
+    ? i18n.t("{order}: on the sheet for today.", { order })
+    : i18n.t("{order}: on the sheet for {day}.", { order, day: formatDay(date, locale) });
+}
+
 /** A worker on the sheet; one who is flagged has one order beneath. */
 export function SheetRow({
   row,
@@ -128,7 +148,7 @@ export function SheetRow({
   frame,
   crewId,
   isFlagged,
-  isForToday = false,
+  nextSheet = null,
   onStale,
 }: {
   row: CrewSheetRow;
@@ -136,7 +156,8 @@ export function SheetRow({
   frame: StripFrame | null;
   crewId: string;
   isFlagged: boolean;
-  isForToday?: boolean;
+  /** Where the order is dealt with on the sheet for the shift to come: its date, and whether that is today. */
+  nextSheet?: NextSheet | null;
   onStale: () => void;
 }) {
   const { i18n } = useLingui();
@@ -173,13 +194,16 @@ export function SheetRow({
       )}
       {isFlagged &&
         order &&
-        (isForToday ? (
+        (nextSheet ? (
           <>
             <div className="sheet-order">
               <div className="sheet-order-words">
-                {i18n.t("{order}: on the sheet for today.", {
-                  order: orderSentence(i18n, locale, order.kind, order.facts),
-                })}
+                {onNextSheet(
+                  i18n,
+                  locale,
+                  nextSheet,
+                  orderSentence(i18n, locale, order.kind, order.facts),
+                )}
               </div>
               <span className="sheet-state">
                 {order.state === "new" || order.state === "came-back"

@@ -4,7 +4,7 @@ import { formatDate } from "../../../shared/format/date";
 import { formatDuration, formatMinutes } from "../../../shared/format/duration";
 import { formatLevel, formatLevelChange, formatLimit } from "../../../shared/format/level";
 import type { Locale } from "../../../shared/i18n/index";
-import { issueText } from "../../lib/issue-text";
+import { issueText } from "../../../shared/problems/issue-text";
 import type { CellFault, UnaccountedWords } from "./cells";
 import type { CellId, GridColumn } from "./columns";
 import type { RowIssue } from "./draft";

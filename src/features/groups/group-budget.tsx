@@ -15,6 +15,8 @@ type Narrowing = BudgetView["narrowings"][number];
 /** Below this share a part is named with the rest: the picture would only show a line. */
 const SMALL_SHARE_PCT = 1;
 const MOST_NARROWINGS = 3;
+/** A change that narrows U by less is named only where nothing narrows it more. */
+const WORTH_NAMING_DB = 0.05;
 
 function sourceWord(i18n: I18n, source: Item["source"]): string {
   switch (source) {
@@ -113,12 +115,15 @@ export function GroupBudget({
     .filter(({ sharePct }) => sharePct < SMALL_SHARE_PCT)
     .reduce((sum, { sharePct }) => sum + sharePct, 0);
   const [dominant] = budget.items;
-  const [best, ...others] = budget.narrowings.slice(0, MOST_NARROWINGS);
+  const [best, ...more] = budget.narrowings.slice(0, MOST_NARROWINGS);
+  const others = more.filter(({ decreaseDb }) => decreaseDb >= WORTH_NAMING_DB);
+  // Changes of a hundredth are told apart here; the level itself is not that well known.
+  const fine = (uncertaintyDb: number) => `±${formatNumber(uncertaintyDb, 2, locale)}`;
   const narrowed = (one: Narrowing) =>
     i18n.t("{change}: {after} instead of {before}", {
       change: changeWords(i18n, one, taskName),
-      after: formatUncertainty(one.expandedDb, locale),
-      before: formatUncertainty(budget.expandedDb, locale),
+      after: fine(one.expandedDb),
+      before: fine(budget.expandedDb),
     });
   return (
     <div className="group-basis">

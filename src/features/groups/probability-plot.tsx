@@ -24,7 +24,7 @@ const MARGIN_Z = 0.25;
 
 /**
  * The samples on a normal scale: on the line, where they are normally distributed. Limits are uprights, the tolerance
- * limit a capped whisker. Drawn for the eye; the table beside it says the same.
+ * limit a capped whisker. Drawn for the eye; the table behind it says the same.
  */
 export function ProbabilityPlot({ statistics }: { statistics: GroupStatistics }) {
   const { i18n } = useLingui();
@@ -64,13 +64,13 @@ export function ProbabilityPlot({ statistics }: { statistics: GroupStatistics })
   const fitTo = hasFit ? Math.min(highZ, (highDb - meanDb) / sdDb) : 0;
   const key = ({ workerId, levelDb, share }: Point) => `${workerId} ${levelDb} ${share}`;
   return (
-    <div className="picture-and-table">
+    <div className="plot">
       <div className="plot-picture" ref={frame}>
         <svg
           height={HEIGHT}
           viewBox={`0 0 ${widthPx} ${HEIGHT}`}
           role="img"
-          aria-label={i18n.t("Probability plot; the table beside it says the same")}
+          aria-label={i18n.t("Probability plot; the table behind it says the same")}
         >
           {SHARES.map(([sharePct, z]) => (
             <g key={sharePct}>
@@ -131,32 +131,35 @@ export function ProbabilityPlot({ statistics }: { statistics: GroupStatistics })
           )}
         </p>
       </div>
-      <DataTable<Point>
-        caption={i18n.t("Samples by rising level")}
-        rows={plot}
-        rowKey={key}
-        columns={[
-          {
-            id: "worker",
-            head: i18n.t("Worker"),
-            isRowHead: true,
-            cell: ({ workerName }) => workerName ?? "–",
-          },
-          {
-            id: "level",
-            head: i18n.t("Level"),
-            unit: "dB",
-            kind: "figure",
-            cell: ({ levelDb }) => formatLevel(levelDb, locale),
-          },
-          {
-            id: "share",
-            head: i18n.t("Below"),
-            kind: "figure",
-            cell: ({ share }) => formatShare(100 * share, locale),
-          },
-        ]}
-      />
+      <details className="plot-table">
+        <summary className="link">{i18n.t("The same as a table")}</summary>
+        <DataTable<Point>
+          caption={i18n.t("Samples by rising level")}
+          rows={plot}
+          rowKey={key}
+          columns={[
+            {
+              id: "worker",
+              head: i18n.t("Worker"),
+              isRowHead: true,
+              cell: ({ workerName }) => workerName ?? "–",
+            },
+            {
+              id: "level",
+              head: i18n.t("Level"),
+              unit: "dB",
+              kind: "figure",
+              cell: ({ levelDb }) => formatLevel(levelDb, locale),
+            },
+            {
+              id: "share",
+              head: i18n.t("Below"),
+              kind: "figure",
+              cell: ({ share }) => formatShare(100 * share, locale),
+            },
+          ]}
+        />
+      </details>
     </div>
   );
 }

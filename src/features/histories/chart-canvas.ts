@@ -4,8 +4,8 @@ import type { ClockChange, ClockTick } from "./history-clock";
 import type { Span } from "./history-span";
 
 /** Room beside the plot, the same in both charts and in the lanes beneath: levels at the left, names at the right. */
-export const LEFT_PX = 46;
-export const RIGHT_PX = 176;
+export const LEFT_PX = 60;
+export const RIGHT_PX = 236;
 const LEVELS_PX = 300;
 const DOSES_PX = 168;
 const LABEL_STEP_PX = 16;
@@ -71,6 +71,14 @@ function spread(labels: readonly Label[], heightPx: number): Label[] {
   return placed;
 }
 
+/** What has room of a name; all of it stands in the tables. */
+function shortened(ctx: CanvasRenderingContext2D, text: string, roomPx: number): string {
+  let kept = text;
+  while (kept.length > 4 && ctx.measureText(kept).width > roomPx)
+    kept = `${kept.replace(/…$/, "").slice(0, -1).trimEnd()}…`;
+  return kept;
+}
+
 function drawLabels(chart: uPlot, labels: readonly Label[], colours: Colours): void {
   const { ctx, bbox } = chart;
   const ratio = uPlot.pxRatio;
@@ -96,7 +104,8 @@ function drawLabels(chart: uPlot, labels: readonly Label[], colours: Colours): v
     ctx.stroke();
     ctx.font = `${isStrong ? "600 " : ""}${FONT.replace("12.5", String(12.5 * ratio))}`;
     ctx.fillStyle = colours.ink;
-    ctx.fillText(text, x + (mark === null ? 0 : 18 * ratio), top);
+    const from = x + (mark === null ? 0 : 18 * ratio);
+    ctx.fillText(shortened(ctx, text, ctx.canvas.width - from), from, top);
   }
   ctx.restore();
 }
@@ -129,10 +138,10 @@ function drawLeftOut(chart: uPlot, stretches: readonly Span[], colours: Colours)
     ctx.beginPath();
     ctx.rect(left, bbox.top, Math.max(right - left, ratio), bbox.height);
     ctx.clip();
-    ctx.strokeStyle = colours["ink-2"];
+    ctx.strokeStyle = colours.rule;
     ctx.lineWidth = ratio;
     ctx.beginPath();
-    for (let x = left - bbox.height; x < right; x += 7 * ratio) {
+    for (let x = left - bbox.height; x < right; x += 10 * ratio) {
       ctx.moveTo(x, bbox.top + bbox.height);
       ctx.lineTo(x + bbox.height, bbox.top);
     }
@@ -170,27 +179,39 @@ function drawChanges(
   ctx.restore();
 }
 
-/** One line through the lowest and the highest of each bucket, from whichever is nearer. */
+/**
+ * Each bucket from its lowest to its highest, joined to the one before only where the two do not meet: a line that turned
+ * at every bucket would cost a joint at each.
+ */
 function envelopePath(chart: uPlot, series: number, from: number, to: number): Path2D {
   const path = new Path2D();
   const xs = chart.data[0];
   const high = chart.data[series]!;
   const low = chart.data[series + 1]!;
   const [at, y] = scalers(chart);
-  let isOpen = false;
+  let before: { x: number; top: number; bottom: number } | null = null;
   for (let index = from; index <= to; index++) {
-    const top = high[index];
-    const bottom = low[index];
-    if (top == null || bottom == null) {
-      isOpen = false;
+    const highDb = high[index];
+    const lowDb = low[index];
+    if (highDb == null || lowDb == null) {
+      before = null;
       continue;
     }
-    const x = at(xs[index]!);
-    if (isOpen) path.lineTo(x, y(bottom));
+    const bucket = { x: at(xs[index]!), top: y(highDb), bottom: y(lowDb) };
+    if (before && bucket.top > before.bottom) {
+      path.moveTo(before.x, before.bottom);
+      path.lineTo(bucket.x, bucket.top);
+    } else if (before && bucket.bottom < before.top) {
+      path.moveTo(before.x, before.top);
+      path.lineTo(bucket.x, bucket.bottom);
+    } else if (before && bucket.top === bucket.bottom && before.top === before.bottom) {
+      path.moveTo(before.x, before.top);
+      path.lineTo(bucket.x, bucket.top);
+    }
     // A value alone between gaps is a dot, which a line of no length would not show.
-    else path.moveTo(x, y(bottom) + 0.5);
-    path.lineTo(x, y(top));
-    isOpen = true;
+    path.moveTo(bucket.x, bucket.bottom + 0.5);
+    path.lineTo(bucket.x, bucket.top);
+    before = bucket;
   }
   return path;
 }
@@ -263,9 +284,12 @@ function xAxis(scene: ChartScene, colours: () => Colours, isLabelled: boolean): 
     stroke: () => colours()["ink-2"],
     splits: () => scene.ticks.map(({ atS }) => atS),
     values: (_, splits) =>
-      splits.map((atS) =>
-        isLabelled ? (scene.ticks.find((tick) => tick.atS === atS)?.text ?? "") : "",
-      ),
+      splits.map((atS) => {
+        const text = scene.ticks.find((tick) => tick.atS === atS)?.text ?? "";
+        // A long one at the very beginning would stand in the lowest level's figure.
+        const share = (atS - scene.span.fromS) / (scene.span.toS - scene.span.fromS);
+        return isLabelled && (text.length < 6 || share > 0.03) ? text : "";
+      }),
     grid: { stroke: () => colours().hair, width: 1 },
     ticks: { stroke: () => colours().ink, width: 1, size: 5 },
     border: { show: true, stroke: () => colours().ink, width: 1 },
@@ -441,13 +465,11 @@ export function createLevelChart(
     over: chart.over,
     show(next, data) {
       Object.assign(scene, next);
-      chart.batch(() => {
-        if (data && data !== drawn) chart.setData(levelColumns(data, shown), false);
-        drawn = data;
-        chart.setScale("y", { min: scene.lowDb, max: scene.highDb });
-        chart.setScale("x", { min: scene.span.fromS, max: scene.span.toS });
-      });
-      chart.redraw();
+      if (data && data !== drawn) chart.setData(levelColumns(data, shown), false);
+      drawn = data;
+      chart.setScale("y", { min: scene.lowDb, max: scene.highDb });
+      // Draws as well, once for all of these, even where the span is the same.
+      chart.setScale("x", { min: scene.span.fromS, max: scene.span.toS });
     },
     resize: (width) => chart.setSize({ width, height: LEVELS_PX }),
     repaint() {
@@ -470,7 +492,10 @@ function levelColumns(
     (levels ?? []).map((level) => (level === null ? null : level / 100));
   return [
     xs,
-    ...shown.flatMap(({ channel }) => [inDb(channels[channel]?.high), inDb(channels[channel]?.low)]),
+    ...shown.flatMap(({ channel }) => [
+      inDb(channels[channel]?.high),
+      inDb(channels[channel]?.low),
+    ]),
   ];
 }
 
@@ -555,14 +580,11 @@ export function createDoseChart(
     over: chart.over,
     show(next, data) {
       Object.assign(scene, next);
-      chart.batch(() => {
-        if (data && data !== drawn)
-          chart.setData([[...data.endsS], ...data.dosesPct.map((doses) => [...doses])], false);
-        drawn = data;
-        chart.setScale("y", { min: 0, max: scene.highPct });
-        chart.setScale("x", { min: scene.span.fromS, max: scene.span.toS });
-      });
-      chart.redraw();
+      if (data && data !== drawn)
+        chart.setData([[...data.endsS], ...data.dosesPct.map((doses) => [...doses])], false);
+      drawn = data;
+      chart.setScale("y", { min: 0, max: scene.highPct });
+      chart.setScale("x", { min: scene.span.fromS, max: scene.span.toS });
     },
     resize: (width) => chart.setSize({ width, height: heightPx }),
     repaint() {

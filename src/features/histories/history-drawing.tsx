@@ -1,5 +1,5 @@
 import { useLingui } from "@lingui/react";
-import { useEffect, useRef, useState } from "react";
+import { useEffect, useMemo, useRef, useState } from "react";
 import { formatMinutes } from "../../../shared/format/duration";
 import type { HistoryView } from "../../../shared/schemas/history";
 import { Button } from "../../components/button";
@@ -183,70 +183,76 @@ export function StretchList({
   const canChange = history.can.change === true && !history.isVoid;
   const { drawn, isChanged } = drawing;
   const rows = drawn.toSorted((a, b) => a.fromS - b.fromS || a.toS - b.toS);
-  const columns: DataColumn<Drawn>[] = [
-    {
-      id: "what",
-      head: i18n.t("Bracket"),
-      isRowHead: true,
-      cell: (one) =>
-        one.kind === "task" ? (
-          stretchName(i18n, one, taskNames)
-        ) : (
-          <>
-            <i className="hatch-word">{i18n.t("Left out")}</i>{" "}
-            {i18n.t("because: {reason}", { reason: one.reason })}
-          </>
-        ),
-    },
-    {
-      id: "from",
-      head: i18n.t("From"),
-      kind: "figure",
-      cell: ({ fromS, toS }) => clockText(clock, fromS, toS - fromS < 120),
-    },
-    {
-      id: "to",
-      head: i18n.t("To"),
-      kind: "figure",
-      cell: ({ fromS, toS }) => clockText(clock, toS, toS - fromS < 120),
-    },
-    {
-      id: "minutes",
-      head: i18n.t("Length"),
-      unit: "min",
-      kind: "figure",
-      hidesOnPhone: true,
-      cell: ({ fromS, toS }) => formatMinutes((toS - fromS) / 60, locale),
-    },
-    ...(canChange
-      ? [
-          {
-            id: "acts",
-            head: <span className="sr-only">{i18n.t("Change")}</span>,
-            kind: "right",
-            cell: (one) => {
-              const name = stretchName(i18n, one, taskNames);
-              return (
-                <span className="row-acts">
-                  <TextButton
-                    aria-label={i18n.t("Change {name}", { name })}
-                    onClick={() => editing.openOf(one.key)}
-                  >
-                    {i18n.t("Change")}
-                  </TextButton>{" "}
-                  <TextButton
-                    aria-label={i18n.t("Remove {name}", { name })}
-                    onClick={() => editing.remove(one.key)}
-                  >
-                    {i18n.t("Remove")}
-                  </TextButton>
-                </span>
-              );
-            },
-          } satisfies DataColumn<Drawn>,
-        ]
-      : []),
-  ];
+  // A table makes its cells anew where its columns are others, and a button under the hand would be gone.
+  const latest = useRef({ editing, taskNames });
+  latest.current = { editing, taskNames };
+  const columns = useMemo(
+    (): DataColumn<Drawn>[] => [
+      {
+        id: "what",
+        head: i18n.t("Bracket"),
+        isRowHead: true,
+        cell: (one) =>
+          one.kind === "task" ? (
+            stretchName(i18n, one, latest.current.taskNames)
+          ) : (
+            <>
+              <i className="hatch-word">{i18n.t("Left out")}</i>{" "}
+              {i18n.t("because: {reason}", { reason: one.reason })}
+            </>
+          ),
+      },
+      {
+        id: "from",
+        head: i18n.t("From"),
+        kind: "figure",
+        cell: ({ fromS, toS }) => clockText(clock, fromS, toS - fromS < 120),
+      },
+      {
+        id: "to",
+        head: i18n.t("To"),
+        kind: "figure",
+        cell: ({ fromS, toS }) => clockText(clock, toS, toS - fromS < 120),
+      },
+      {
+        id: "minutes",
+        head: i18n.t("Length"),
+        unit: "min",
+        kind: "figure",
+        hidesOnPhone: true,
+        cell: ({ fromS, toS }) => formatMinutes((toS - fromS) / 60, locale),
+      },
+      ...(canChange
+        ? [
+            {
+              id: "acts",
+              head: <span className="sr-only">{i18n.t("Change")}</span>,
+              kind: "right",
+              cell: (one) => {
+                const name = stretchName(i18n, one, latest.current.taskNames);
+                return (
+                  <span className="row-acts">
+                    <TextButton
+                      aria-label={i18n.t("Change {name}", { name })}
+                      onClick={() => latest.current.editing.openOf(one.key)}
+                    >
+                      {i18n.t("Change")}
+                    </TextButton>{" "}
+                    <TextButton
+                      aria-label={i18n.t("Remove {name}", { name })}
+                      onClick={() => latest.current.editing.remove(one.key)}
+                    >
+                      {i18n.t("Remove")}
+                    </TextButton>
+                  </span>
+                );
+              },
+            } satisfies DataColumn<Drawn>,
+          ]
+        : []),
+    ],
+    [i18n, locale, clock, canChange],
+  );
   return (
     <>
       {canChange && (
@@ -261,7 +267,7 @@ export function StretchList({
               <Button kind="primary" isBusy={isSaving} onClick={onSave}>
                 {i18n.t("Save the brackets")}
               </Button>
-              <TextButton onClick={() => drawing.reset(history.stretches)}>
+              <TextButton onClick={() => drawing.reset(history)}>
                 {i18n.t("Throw my changes away")}
               </TextButton>
             </>

@@ -1,12 +1,5 @@
 import { useLingui } from "@lingui/react";
-import {
-  type KeyboardEvent,
-  type PointerEvent,
-  useEffect,
-  useId,
-  useRef,
-  useState,
-} from "react";
+import { type KeyboardEvent, type PointerEvent, useEffect, useId, useRef, useState } from "react";
 import { formatMinutes } from "../../../shared/format/duration";
 import { useLocale } from "../../lib/i18n";
 import { LEFT_PX, RIGHT_PX } from "./chart-canvas";
@@ -205,10 +198,14 @@ function Lane({
     );
   }
 
-  const place = ({ fromS, toS }: Span) => ({
-    left: `${(100 * (fromS - span.fromS)) / spanS}%`,
-    width: `${(100 * (toS - fromS)) / spanS}%`,
-  });
+  /** The part that is seen: a name at the end of a bracket far out of sight could not be read. */
+  const place = ({ fromS, toS }: Span) => {
+    const [from, to] = [Math.max(fromS, span.fromS), Math.min(toS, span.toS)];
+    return {
+      left: `${(100 * (from - span.fromS)) / spanS}%`,
+      width: `${(100 * (to - from)) / spanS}%`,
+    };
+  };
   const seen = drawn
     .filter((one) => one.kind === kind && one.toS > span.fromS && one.fromS < span.toS)
     .toSorted((a, b) => a.fromS - b.fromS);
@@ -238,6 +235,7 @@ function Lane({
               key={one.key}
               bracketKey={one.key}
               className={`bracket is-${kind}${one.key === openKey ? " is-open" : ""}`}
+              cut={{ from: one.fromS < span.fromS, to: one.toS > span.toS }}
               style={place(one)}
               label={i18n.t("{name}, {range}, {minutes} min", { name, range, minutes })}
               hintId={hintId}
@@ -261,7 +259,8 @@ function Lane({
 
 function Bracket({
   bracketKey,
-  className,
+  className: kindOf,
+  cut,
   style,
   label,
   hintId,
@@ -273,6 +272,8 @@ function Bracket({
 }: {
   bracketKey: string;
   className: string;
+  /** Ends that lie beyond what is seen. */
+  cut: Readonly<Record<Edge, boolean>>;
   style: { left: string; width: string };
   label: string;
   hintId: string;
@@ -283,12 +284,13 @@ function Bracket({
   children: string;
 }) {
   const button = useRef<HTMLButtonElement>(null);
+  const className = `${kindOf}${cut.from ? " is-cut-from" : ""}${cut.to ? " is-cut-to" : ""}`;
   const gripAt = (clientX: number): "move" | Edge => {
     const { left = 0, right = 0, width = 0 } = button.current?.getBoundingClientRect() ?? {};
     // A short bracket is still to be moved: its ends then reach inwards less far.
     const reach = Math.min(GRIP_PX, width / 3);
-    if (clientX - left <= reach) return "from";
-    return right - clientX <= reach ? "to" : "move";
+    if (clientX - left <= reach && !cut.from) return "from";
+    return right - clientX <= reach && !cut.to ? "to" : "move";
   };
   useEffect(() => {
     const element = button.current;

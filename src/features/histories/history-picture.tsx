@@ -9,6 +9,7 @@ import {
   useRef,
   useState,
 } from "react";
+import { formatShare } from "../../../shared/format/dose";
 import { formatDuration } from "../../../shared/format/duration";
 import { formatLevel } from "../../../shared/format/level";
 import type {
@@ -93,7 +94,10 @@ function useRepaint(repaint: () => void): void {
   useEffect(() => {
     const paint = () => latest.current();
     const observer = new MutationObserver(paint);
-    observer.observe(document.documentElement, { attributes: true, attributeFilter: ["data-theme"] });
+    observer.observe(document.documentElement, {
+      attributes: true,
+      attributeFilter: ["data-theme"],
+    });
     const lists = ["(prefers-color-scheme: dark)", "(forced-colors: active)"].map((query) =>
       matchMedia(query),
     );
@@ -215,7 +219,7 @@ export function HistoryPicture({
     ...scene,
     ...doseAxis(Math.max(0, ...(doses ?? []).map(({ dosePct }) => dosePct.at(-1) ?? 0))),
     limitText: i18n.t("limit 100 %"),
-    pctText: (pct) => doseText(pct, "exact", locale),
+    pctText: (pct) => formatShare(pct, locale),
     lines: (doses ?? []).map((dose, place) => {
       const bucket = Math.floor((span.toS + 1e-6) / dose.bucketS) - 1;
       const sofar = dose.dosePct[Math.min(bucket, dose.dosePct.length - 1)] ?? 0;
@@ -261,13 +265,7 @@ export function HistoryPicture({
   const showWhole = () => setSpan({ fromS: 0, toS: lengthS });
   const zoom = (factor: number, aroundS?: number) =>
     setSpan((before) =>
-      zoomSpan(
-        before,
-        factor,
-        aroundS ?? (before.fromS + before.toS) / 2,
-        shortestS,
-        lengthS,
-      ),
+      zoomSpan(before, factor, aroundS ?? (before.fromS + before.toS) / 2, shortestS, lengthS),
     );
   const pan = (share: number) => setSpan((before) => panSpan(before, share, lengthS));
 
@@ -338,8 +336,7 @@ export function HistoryPicture({
     const element = frame.current;
     if (!element) return;
     const onWheel = (event: WheelEvent) => {
-      const isMeant =
-        event.ctrlKey || event.metaKey || element.contains(document.activeElement);
+      const isMeant = event.ctrlKey || event.metaKey || element.contains(document.activeElement);
       const over = (event.target as Element).closest?.(".u-over");
       if (!isMeant || !over) return;
       event.preventDefault();
@@ -365,19 +362,29 @@ export function HistoryPicture({
 
   function onKeyDown(event: KeyboardEvent) {
     if (event.altKey || event.ctrlKey || event.metaKey) return;
-    const acts: Record<string, () => void> = {
-      "+": () => zoom(CLOSER),
-      "=": () => zoom(CLOSER),
-      "-": () => zoom(WIDER),
-      ArrowLeft: () => pan(-STEP),
-      ArrowRight: () => pan(STEP),
-      Home: showWhole,
-    };
-    const act = acts[event.key];
     // Where all is seen the arrows scroll the picture's own window.
-    if (!act || (event.key.startsWith("Arrow") && isWhole(span, lengthS))) return;
+    if (event.key.startsWith("Arrow") && isWhole(span, lengthS)) return;
+    switch (event.key) {
+      case "+":
+      case "=":
+        zoom(CLOSER);
+        break;
+      case "-":
+        zoom(WIDER);
+        break;
+      case "ArrowLeft":
+        pan(-STEP);
+        break;
+      case "ArrowRight":
+        pan(STEP);
+        break;
+      case "Home":
+        showWhole();
+        break;
+      default:
+        return;
+    }
     event.preventDefault();
-    act();
   }
 
   const isAll = isWhole(span, lengthS);
@@ -408,7 +415,11 @@ export function HistoryPicture({
           </div>
         )}
         {/* biome-ignore lint/a11y/useSemanticElements: as above */}
-        <div className="shift-zoom" role="group" aria-label={i18n.t("Part of the shift that is seen")}>
+        <div
+          className="shift-zoom"
+          role="group"
+          aria-label={i18n.t("Part of the shift that is seen")}
+        >
           <Button onClick={() => zoom(CLOSER)}>{i18n.t("Closer")}</Button>
           <Button disabled={isAll} onClick={() => zoom(WIDER)}>
             {i18n.t("Wider")}
@@ -431,7 +442,9 @@ export function HistoryPicture({
         role="group"
         // biome-ignore lint/a11y/noNoninteractiveTabindex: keys look closer, and scroll where it is wider than the window
         tabIndex={0}
-        aria-label={i18n.t("Picture of the shift. Plus and minus look closer and wider, arrows move, Home shows the whole.")}
+        aria-label={i18n.t(
+          "Picture of the shift. Plus and minus look closer and wider, arrows move, Home shows the whole.",
+        )}
         onKeyDown={onKeyDown}
       >
         <div className="shift-paper" style={{ minWidth: NARROWEST_PX }}>

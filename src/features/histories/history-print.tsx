@@ -15,6 +15,9 @@ const LEVELS = { top: 6, height: 190 };
 const DOSES = { top: 226, height: 90 };
 const LANES_TOP = 334;
 
+/** Places on the paper, short enough for thousands of them. */
+const tenths = (place: number) => Math.round(place * 10) / 10;
+
 /** The whole shift on paper: black lines that a printer draws sharp, whatever the screen shows. */
 export const HistoryPrint = memo(function HistoryPrint({
   envelope,
@@ -47,8 +50,8 @@ export const HistoryPrint = memo(function HistoryPrint({
     .map((high, index) => {
       const low = levels?.low[index] ?? null;
       if (high === null || low === null) return "";
-      const at = x(envelope.fromS + (index + 0.5) * envelope.bucketS).toFixed(1);
-      return `M${at} ${(y(low / 100) + 0.5).toFixed(1)}V${y(high / 100).toFixed(1)}`;
+      const at = tenths(x(envelope.fromS + (index + 0.5) * envelope.bucketS));
+      return `M${at} ${tenths(y(low / 100) + 0.5)}V${tenths(y(high / 100))}`;
     })
     .join("");
   const mostPct = Math.max(105, ...analysis.runningDose.map(({ dosePct }) => dosePct.at(-1) ?? 0));
@@ -63,11 +66,7 @@ export const HistoryPrint = memo(function HistoryPrint({
       return { dose, labelY };
     });
   return (
-    <svg
-      className="shift-print"
-      viewBox={`0 0 ${WIDTH} ${LANES_TOP + 56}`}
-      aria-hidden="true"
-    >
+    <svg className="shift-print" viewBox={`0 0 ${WIDTH} ${LANES_TOP + 56}`} aria-hidden="true">
       <defs>
         <pattern
           id="left-out-lines"
@@ -115,7 +114,7 @@ export const HistoryPrint = memo(function HistoryPrint({
           key={place}
           className="trace"
           points={[0, ...dose.dosePct]
-            .map((pct, index) => `${x(index * dose.bucketS).toFixed(1)},${doseY(pct).toFixed(1)}`)
+            .map((pct, index) => `${tenths(x(index * dose.bucketS))},${tenths(doseY(pct))}`)
             .join(" ")}
         />
       ))}

@@ -24,12 +24,7 @@ export const areSame = (
   const text = (stretches: readonly HistoryStretch[]) =>
     JSON.stringify(
       stretches
-        .map((one) => [
-          one.kind,
-          one.fromS,
-          one.toS,
-          one.kind === "task" ? one.taskId : one.reason,
-        ])
+        .map((one) => [one.kind, one.fromS, one.toS, one.kind === "task" ? one.taskId : one.reason])
         .toSorted(),
     );
   return text(some) === text(others);
@@ -116,9 +111,7 @@ export function stretchBetween(
   const peer = isForward
     ? peers.find(({ fromS }) => fromS >= anchorS - HAIR_S)
     : peers.findLast(({ toS }) => toS <= anchorS + HAIR_S);
-  const endS = isForward
-    ? Math.min(atS, peer?.fromS ?? lengthS)
-    : Math.max(atS, peer?.toS ?? 0);
+  const endS = isForward ? Math.min(atS, peer?.fromS ?? lengthS) : Math.max(atS, peer?.toS ?? 0);
   return {
     fromS: Math.min(anchorS, endS),
     toS: Math.max(anchorS, endS),

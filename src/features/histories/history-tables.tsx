@@ -1,5 +1,5 @@
 import { useLingui } from "@lingui/react";
-import type { ReactNode } from "react";
+import { type ReactNode, useEffect, useRef, useState } from "react";
 import { formatDose, formatShare } from "../../../shared/format/dose";
 import { formatMinutes } from "../../../shared/format/duration";
 import { formatLevel, formatLevelChange } from "../../../shared/format/level";
@@ -159,8 +159,7 @@ export function CompareTable({ analysis }: { analysis: HistoryAnalysis }) {
       note: reading.bound === "exact" ? undefined : boundWord(i18n, reading.bound),
       counted: doseText(reading.dosePct, reading.bound, locale),
       everything: other ? doseText(other.dosePct, other.bound, locale) : "–",
-      difference:
-        change === null ? "–" : `${change > 0 ? "+" : ""}${formatDose(change, locale)}`,
+      difference: change === null ? "–" : `${change > 0 ? "+" : ""}${formatDose(change, locale)}`,
     };
   });
   const percentile = (share: string) =>
@@ -232,6 +231,17 @@ export function Distribution({ analysis }: { analysis: HistoryAnalysis }) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const { distribution } = analysis;
+  const frame = useRef<HTMLDivElement>(null);
+  const [width, setWidth] = useState(560);
+  useEffect(() => {
+    const element = frame.current;
+    if (!element || typeof ResizeObserver === "undefined") return;
+    const observer = new ResizeObserver(([entry]) => {
+      if (entry && entry.contentRect.width > 0) setWidth(Math.round(entry.contentRect.width));
+    });
+    observer.observe(element);
+    return () => observer.disconnect();
+  }, []);
   const first = distribution[0];
   const last = distribution.at(-1);
   if (!first || !last)
@@ -239,8 +249,7 @@ export function Distribution({ analysis }: { analysis: HistoryAnalysis }) {
   const lowDb = Math.floor(first.fromDb / 10) * 10;
   const highDb = Math.ceil((last.fromDb + 1) / 10) * 10;
   const mostPct = Math.max(...distribution.map(({ sharePct }) => sharePct));
-  const width = 640;
-  const x = (db: number) => 8 + ((db - lowDb) * (width - 16)) / (highDb - lowDb);
+  const x = (db: number) => 14 + ((db - lowDb) * (width - 28)) / (highDb - lowDb);
   const most = distribution.find(({ sharePct }) => sharePct === mostPct) ?? first;
   const tens = Array.from({ length: (highDb - lowDb) / 10 + 1 }, (_, step) => lowDb + 10 * step);
   const label = i18n.t(
@@ -276,7 +285,7 @@ export function Distribution({ analysis }: { analysis: HistoryAnalysis }) {
     },
   ];
   return (
-    <>
+    <div className="distribution-frame" ref={frame}>
       <svg
         className="distribution"
         viewBox={`0 0 ${width} ${PICTURE_HEIGHT + 26}`}
@@ -304,7 +313,13 @@ export function Distribution({ analysis }: { analysis: HistoryAnalysis }) {
             level: formatNumber(most.fromDb, 0, locale),
           })}
         </text>
-        <line className="distribution-base" x1={0} x2={width} y1={PICTURE_HEIGHT} y2={PICTURE_HEIGHT} />
+        <line
+          className="distribution-base"
+          x1={0}
+          x2={width}
+          y1={PICTURE_HEIGHT}
+          y2={PICTURE_HEIGHT}
+        />
         {tens.map((db) => (
           <text key={db} x={x(db)} y={PICTURE_HEIGHT + 19} textAnchor="middle">
             {formatNumber(db, 0, locale)}
@@ -320,7 +335,7 @@ export function Distribution({ analysis }: { analysis: HistoryAnalysis }) {
           rowKey={({ fromDb }) => String(fromDb)}
         />
       </details>
-    </>
+    </div>
   );
 }
 

@@ -7,7 +7,10 @@ import { areSame, type Drawn, toDrawn, toStretches } from "./history-stretches";
  * What is drawn under a history and not saved yet: kept on this device through a reload, and each step can be taken back.
  */
 export function useDrawing(history: HistoryView) {
-  const { id, revision, stretches } = history;
+  const { id } = history;
+  // Somebody else's save, seen meanwhile, does not make what is drawn here a change of it.
+  const [base, setBase] = useState<HistoryView>(history);
+  const { revision, stretches } = base;
   const [found] = useState<HistoryDraft | null>(() => readDraft(id));
   // A draft over an earlier revision met somebody else's drawing: both are shown, neither is taken.
   const [overtaken, setOvertaken] = useState<HistoryDraft | null>(
@@ -24,6 +27,11 @@ export function useDrawing(history: HistoryView) {
   /** What stood before the hand took hold, while it is still moving. */
   const held = useRef<readonly Drawn[] | null>(null);
   const isChanged = !areSame(drawn, stretches);
+  if (history.revision > revision && !isChanged && !overtaken) {
+    setBase(history);
+    setDrawn(toDrawn(history.stretches));
+    setPast([]);
+  }
 
   useEffect(() => {
     if (overtaken) return;
@@ -33,6 +41,8 @@ export function useDrawing(history: HistoryView) {
 
   return {
     drawn,
+    /** The revision that it is drawn over. */
+    revision,
     isChanged,
     wasRestored,
     overtaken,
@@ -57,12 +67,13 @@ export function useDrawing(history: HistoryView) {
       setDrawn(before);
     },
     /** Starts again from what is saved. */
-    reset: (from: HistoryView["stretches"]) => {
+    reset: (from: HistoryView) => {
       forgetDraft(id);
+      setBase(from);
       setOvertaken(null);
       setWasRestored(false);
       setPast([]);
-      setDrawn(toDrawn(from));
+      setDrawn(toDrawn(from.stretches));
     },
   };
 }

@@ -17,7 +17,10 @@ export function lastShiftSentence(i18n: I18n, locale: Locale, day: OwnDay): stri
   const values = {
     day: formatDay(day.date, locale),
     level: formatWholeLevel(atEarDb, locale),
-    around: formatWholeLevel(outsideDb, locale),
+    around:
+      day.outsideBound === "lower"
+        ? i18n.t("at least {level}", { level: formatWholeLevel(outsideDb, locale) })
+        : formatWholeLevel(outsideDb, locale),
     limit: limit ? formatLimit(limit.levelDb, locale) : "",
     top: atEarDb === null ? "" : formatWholeLevel(atEarDb + (uncertaintyDb ?? 0), locale),
   };
@@ -28,7 +31,8 @@ export function lastShiftSentence(i18n: I18n, locale: Locale, day: OwnDay): stri
           "On {day} *{level} decibels* reached your ear. Your protector was too little for that.",
           values,
         );
-      if (day.word !== null)
+      // A bang over its own limit stands at the top of the page: nothing here may say that all was well.
+      if (day.word !== null && !hasLoudMoment(day))
         return i18n.t(
           "On {day} *{level} decibels* reached your ear. Your protector was enough.",
           values,
@@ -67,6 +71,9 @@ export function lastShiftSentence(i18n: I18n, locale: Locale, day: OwnDay): stri
     values,
   );
 }
+
+const hasLoudMoment = ({ kindsOver }: OwnDay) =>
+  kindsOver.includes("peak") || kindsOver.includes("ceiling");
 
 export function LastShift({ day }: { day: OwnDay | null }) {
   const { i18n } = useLingui();

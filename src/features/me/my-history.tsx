@@ -16,15 +16,10 @@ import { nameOf } from "./what-to-do";
 const LONGEST_BY_DAY = 100;
 /** With more, a figure at the highest would stand in the crowd. */
 const MOST_OVER_WITH_NOTE = 3;
-/** Room under the ticks for what a mark says, dB. */
-const LABEL_ROOM_DB = 10;
 const ROWS_AT_ONCE = 20;
+const BOUND_SIGNS = { exact: "", lower: "≥", upper: "≤" };
 
 const daysBetween = (from: string, to: string) => (Date.parse(to) - Date.parse(from)) / 86_400_000;
-
-/** A whole ten that leaves the mark's words free of ticks. */
-const lowForLabels = (levels: readonly number[]) =>
-  Math.min(70, 10 * Math.floor((Math.min(...levels) - LABEL_ROOM_DB) / 10));
 
 /** The year as a picture, and the same as a list behind it. */
 export function MyHistory({
@@ -52,7 +47,6 @@ export function MyHistory({
     .filter(({ levelDb }) => levelDb !== null && limitDb !== null && levelDb > limitDb)
     .sort((a, b) => (b.levelDb ?? 0) - (a.levelDb ?? 0));
   const worst = over.length <= MOST_OVER_WITH_NOTE ? over[0] : undefined;
-  const levels = shown.flatMap(({ levelDb }) => (levelDb === null ? [] : [levelDb]));
   const marks: HistoryMark[] = assignments
     .filter(({ use, fromDate }) => use === "everywhere" && fromDate > first)
     .map((one) => ({
@@ -72,7 +66,6 @@ export function MyHistory({
         )}
         limitDb={limitDb}
         marks={marks}
-        lowDb={marks.length > 0 ? lowForLabels(levels) : undefined}
         tableLink={
           <TextButton
             className="me-list-link"
@@ -115,7 +108,10 @@ export function MyHistory({
                 <tr key={day.date}>
                   <th scope="row">{formatShortDate(day.date, locale)}</th>
                   <td className="is-figure">{formatWholeLevel(day.atEarDb, locale)}</td>
-                  <td className="is-figure">{formatWholeLevel(day.outsideDb, locale)}</td>
+                  <td className="is-figure">
+                    {day.outsideDb !== null && BOUND_SIGNS[day.outsideBound]}
+                    {formatWholeLevel(day.outsideDb, locale)}
+                  </td>
                   <td>{limitDb !== null && <Verdict verdict={day.verdictAtEar} />}</td>
                 </tr>
               ))}

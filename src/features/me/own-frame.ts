@@ -8,7 +8,8 @@ import type { OwnDay } from "./queries";
 export function ownFrame(i18n: I18n, locale: Locale, { limit, ...day }: OwnDay): StripFrame {
   return {
     key: `${day.ruleSetKey} ${day.ruleSetVersion}`,
-    limits: limit
+    // A limit for the noise around you says nothing of the level at your ear, which the arrow falls to.
+    limits: limit?.isAtEar
       ? [
           {
             levelDb: limit.levelDb,

@@ -1,13 +1,18 @@
 import { queryOptions, useMutation, useQueryClient } from "@tanstack/react-query";
 import type { z } from "zod";
+import type { FindingPage } from "../../../shared/schemas/finding";
 import type { HistoryPage, WorkerView } from "../../../shared/schemas/worker";
 import { api } from "../../lib/api";
 import { ownReply } from "../../lib/own-reply";
 
 export type OwnDay = z.infer<typeof HistoryPage>["rows"][number];
 
+export type OwnFinding = z.infer<typeof FindingPage>["rows"][number];
+
 /** More than a worker has days in a year. */
 const A_YEAR_OF_DAYS = 400;
+/** More than one worker has open at once. */
+const MOST_FINDINGS = 100;
 
 export const ownQueries = {
   all: ["me"] as const,
@@ -19,6 +24,18 @@ export const ownQueries = {
           schema: ownReply<WorkerView>("name", "siteId", "assignments", "can"),
           signal,
         }),
+    }),
+  /** What is open about this worker, with what was proposed. */
+  findings: (workerId: string) =>
+    queryOptions({
+      queryKey: ["me", workerId, "findings"],
+      queryFn: ({ signal }) =>
+        api.get("/findings", {
+          query: { workerId, limit: MOST_FINDINGS },
+          schema: ownReply<{ rows: OwnFinding[] }>("rows"),
+          signal,
+        }),
+      select: ({ rows }) => rows,
     }),
   days: (workerId: string, from: string) =>
     queryOptions({

@@ -1,10 +1,11 @@
 import type { I18n } from "@lingui/core";
 import { protectorNames } from "../../../shared/findings/facts";
+import { ORDER_KINDS, foldOrders } from "../../../shared/findings/orders";
 import { workerSentence } from "../../../shared/findings/worker-sentence";
 import type { Locale } from "../../../shared/i18n/index";
 import type { FindingKind } from "../../../shared/schemas/finding";
-import { type OwnProtector, protectorOfDay } from "./own-protectors";
-import type { OwnDay } from "./queries";
+import type { OwnProtector } from "./own-protectors";
+import type { OwnDay, OwnFinding } from "./queries";
 
 export const nameOf = (i18n: I18n, { innerName, outerName }: OwnProtector): string =>
   protectorNames(i18n, outerName === null ? [innerName] : [innerName, outerName]);
@@ -12,39 +13,42 @@ export const nameOf = (i18n: I18n, { innerName, outerName }: OwnProtector): stri
 interface Known {
   lastDay: OwnDay | null;
   protectors: readonly OwnProtector[];
-  assignments: readonly OwnProtector[];
+  findings: readonly OwnFinding[];
 }
 
-/** What the last day says has to change, as the cause that a worker is told about; null where nothing has. */
-function causeOf({
-  lastDay,
-  protectors,
-  assignments,
-}: Known): { kind: FindingKind; facts: Record<string, unknown> } | null {
-  if (!lastDay || lastDay.origin === "imported") return null;
-  const isPassed = ["over", "cant-tell-yet"].includes(lastDay.verdictOutside);
-  if (lastDay.hasProtector === "no" && isPassed && protectors.length === 0)
-    return { kind: "no-protector", facts: {} };
-  // Somebody has acted since: what stands here is what is worn now.
-  if (protectors.some(({ fromDate }) => fromDate > lastDay.date)) return null;
+const ABOUT_PROTECTOR: ReadonlySet<FindingKind> = new Set<FindingKind>([
+  "no-protector",
+  "over-limit-at-ear",
+  "dual-protection",
+  "protects-too-little",
+  "protects-too-much",
+]);
 
-  const worn = protectorOfDay(assignments, lastDay);
-  const facts = {
-    taskName: lastDay.decidingTaskName,
-    protector: worn && worn.outerName === null ? worn.innerName : null,
-  };
-  const isOver = (kinds: readonly string[]) =>
-    lastDay.kindsOver.some((kind) => kinds.includes(kind));
-  if (lastDay.word === "too-little") return { kind: "protects-too-little", facts };
-  if (lastDay.verdictAtEar === "over")
-    return { kind: "over-limit-at-ear", facts: { levelDb: lastDay.atEarDb } };
-  if (isOver(["dual-protection"]) && worn?.outerName === null)
-    return { kind: "dual-protection", facts: {} };
-  if (isOver(["peak", "ceiling"])) return { kind: "peak-or-ceiling", facts: {} };
-  if (lastDay.word === "too-much") return { kind: "protects-too-much", facts };
-  if (lastDay.reason === "wearing-unknown") return { kind: "wearing-unknown", facts };
-  if (lastDay.reason === "time-unknown") return { kind: "time-not-accounted", facts };
-  return null;
+/** Open findings that ask something of the worker; the others are the officer's own. */
+const TOLD: ReadonlySet<FindingKind> = new Set<FindingKind>([
+  ...ORDER_KINDS,
+  "over-limit-outside",
+  "time-not-accounted",
+]);
+/** What a worker can only wait for stands last. */
+const placeOf = (kind: FindingKind) =>
+  ORDER_KINDS.includes(kind) ? ORDER_KINDS.indexOf(kind) : ORDER_KINDS.length;
+
+/**
+ * What the open findings ask of the worker, most serious first, one for whatever is put right by what is worn. A finding
+ * that others have done their part for asks for nothing, nor does one about a protector once another was given.
+ */
+function asked({ findings, protectors, lastDay }: Known): OwnFinding[] {
+  const isAnswered = ({ kind, lastDate }: OwnFinding) =>
+    ABOUT_PROTECTOR.has(kind) && protectors.some(({ fromDate }) => fromDate > lastDate);
+  const hasNewRules = ({ rulesUntil }: OwnFinding) =>
+    rulesUntil !== null && lastDay !== null && lastDay.date >= rulesUntil;
+  return foldOrders(
+    findings.filter((one) => TOLD.has(one.kind) && !isAnswered(one) && !hasNewRules(one)),
+  )
+    .map(({ lead }) => lead)
+    .filter(({ state }) => state !== "done")
+    .toSorted((one, other) => placeOf(one.kind) - placeOf(other.kind));
 }
 
 function wear(i18n: I18n, one: OwnProtector): string {
@@ -57,8 +61,11 @@ function wear(i18n: I18n, one: OwnProtector): string {
 /** What to do, in the order of its weight: the first sentence is the page's title. */
 export function whatToDo(i18n: I18n, locale: Locale, known: Known): [string, ...string[]] {
   const { lastDay, protectors } = known;
-  const cause = causeOf(known);
-  if (cause) return [workerSentence(i18n, locale, cause.kind, cause.facts)];
+  const sentences = asked(known).map(({ kind, facts }) =>
+    workerSentence(i18n, locale, kind, facts),
+  );
+  const [first, ...further] = new Set(sentences);
+  if (first !== undefined) return [first, ...further];
   const [main, ...others] = protectors;
   if (main) {
     const more = others.map((one) =>

@@ -4,7 +4,7 @@ import type { FileView } from "../../../shared/schemas/outing";
 import { Field } from "../../components/form";
 import { TextButton } from "../../components/link";
 import { ApiError } from "../../lib/api";
-import { issueText } from "../../lib/issue-text";
+import { issueText } from "../../../shared/problems/issue-text";
 import { problemText } from "../../lib/problem-text";
 import { attachFile } from "./queries";
 

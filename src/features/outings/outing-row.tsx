@@ -23,7 +23,7 @@ import { TextButton, TextLink } from "../../components/link";
 import { ApiError } from "../../lib/api";
 import { useChangeKey } from "../../lib/change-key";
 import { useLocale } from "../../lib/i18n";
-import { issueText } from "../../lib/issue-text";
+import { issueText } from "../../../shared/problems/issue-text";
 import { problemText } from "../../lib/problem-text";
 import { searchWorkers } from "../../lib/references";
 import { settingsWords } from "../../lib/register-words";

@@ -1,6 +1,8 @@
 import { queryOptions, useQuery } from "@tanstack/react-query";
 import type { RoleName, SessionUser, SessionView } from "../../../shared/schemas/session";
+import type { Locale } from "../../../shared/i18n/index";
 import { api, noReply } from "../../lib/api";
+import { rememberChoice } from "../../lib/i18n";
 
 const isSession = (value: unknown): value is SessionView =>
   typeof value === "object" && value !== null && "user" in value && "pendingName" in value;
@@ -37,7 +39,9 @@ export async function signOut(): Promise<void> {
   window.location.assign(redirectTo);
 }
 
-/** The language chosen on this device is also that of the mails. Where it can't be kept, the choice here still holds. */
-export async function keepLanguage(language: string): Promise<void> {
-  await api.put("/me/settings", { body: { language }, schema: noReply }).catch(() => undefined);
+/** The language chosen here is also that of the mails. Where it can't be kept now, the next start tries again. */
+export async function keepLanguage(language: Locale): Promise<void> {
+  await api
+    .put("/me/settings", { body: { language }, schema: noReply })
+    .catch(() => rememberChoice(language));
 }

@@ -93,6 +93,9 @@ export function AdoptionForm({
               const facts = [
                 `${formatLevel(result.levelDb, locale)} dB(A)`,
                 result.asksFor === null ? null : nextWords(i18n, result),
+                result.octaveBandsDb === null
+                  ? i18n.t("no octave bands: methods that need them are not assessed")
+                  : null,
               ]
                 .filter(Boolean)
                 .join("; ");

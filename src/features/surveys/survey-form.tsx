@@ -358,14 +358,14 @@ function TargetsField({
                         </span>
                       )}
                     </td>
-                    <td>
+                    <td data-label={i18n.t("Samples")}>
                       <NumberInput
                         aria-label={i18n.t("Samples of {task}", { task: name })}
                         value={target.samplesCount}
                         onValue={(value) => change(index, "samplesCount", value)}
                       />
                     </td>
-                    <td>
+                    <td data-label={i18n.t("Minutes each")}>
                       <NumberInput
                         aria-label={i18n.t("Minutes of each sample of {task}", { task: name })}
                         value={target.sampleMin}

@@ -6,7 +6,6 @@ import { formatDate } from "../../../shared/format/date";
 import { formatLevel } from "../../../shared/format/level";
 import { GradeName, InstrumentClassName } from "../../../shared/schemas/evaluation";
 import { TaskDetail, TaskLevelInput, type TaskLevelView } from "../../../shared/schemas/task";
-import { BandFields } from "../../components/band-fields";
 import {
   DateField,
   Field,
@@ -24,6 +23,7 @@ import {
 } from "../../components/meter-settings";
 import { NumberInput } from "../../components/number-input";
 import { LookActions, ReviewedChange, useReviewedChange } from "../../components/reviewed-change";
+import { SpectrumField, useSpectrumCheck } from "../../components/spectrum-field";
 import { useLocale } from "../../lib/i18n";
 import { gradeWord, instrumentClassWord } from "../../lib/register-words";
 import { taskQueries } from "./queries";
@@ -198,6 +198,9 @@ export function LevelForm({
       onSaved();
     },
   });
+  const [metric, levelDb, bands] = form.watch(["metric", "levelDb", "octaveBandsDb"]);
+  // A mean at another exchange rate is not what the bands add up to.
+  const spectrum = useSpectrumCheck(bands, metric.kind === "lavg" ? null : levelDb);
   const look = form.handleSubmit((body) => {
     if (!isFirst && body.reason === null) {
       form.setError(
@@ -210,7 +213,7 @@ export function LevelForm({
       );
       return;
     }
-    change.look(body);
+    if (spectrum.isSettled()) change.look(body);
   });
   return (
     <ReviewedChange
@@ -248,11 +251,11 @@ export function LevelForm({
           isOptional
           note={i18n.t("Where there is no spectrum; SNR and HML need it.")}
         />
-        <BandFields
+        <SpectrumField
           form={form}
           name="octaveBandsDb"
           label={i18n.t("Octave bands, dB")}
-          rows={[{ label: i18n.t("Octave band level") }]}
+          check={spectrum}
           note={i18n.t(
             "Unweighted. 63 Hz may stay empty. Eight values can be pasted into any cell.",
           )}

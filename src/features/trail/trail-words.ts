@@ -16,6 +16,7 @@ export const SUBJECT_KINDS = [
   "task",
   "job",
   "file",
+  "recording",
 ] as const;
 export type SubjectKind = (typeof SUBJECT_KINDS)[number];
 
@@ -52,6 +53,12 @@ export function subjectWord(i18n: I18n, kind: string): string {
       return i18n.t("Job");
     case "file":
       return i18n.t("File");
+    case "recording":
+      return i18n.t("Recording");
+    case "survey":
+      return i18n.t("Survey");
+    case "workplace-change":
+      return i18n.t("Change at work");
     default:
       return kind;
   }
@@ -102,8 +109,41 @@ export function actionWord(i18n: I18n, action: string): string {
       return i18n.t("Never went out");
     case "record-calibration":
       return i18n.t("Calibration recorded");
+    case "start-recording":
+      return i18n.t("Sent in");
+    case "analyse-recording":
+      return i18n.t("Analysed");
+    case "refuse-recording":
+      return i18n.t("Could not be used");
+    case "accept-recording-faults":
+      return i18n.t("Used in spite of a fault");
+    case "cancel-recording":
+      return i18n.t("Cancelled");
+    case "keep-recording":
+      return i18n.t("Sound kept");
+    case "delete-audio":
+      return i18n.t("Sound deleted");
+    case "adopt-recording":
+      return i18n.t("Level from a recording");
+    case "measure-tone":
+      return i18n.t("Calibrator’s tone measured");
     case "upload-file":
       return i18n.t("File sent");
+    case "start-history-import":
+      return i18n.t("File of levels sent in");
+    case "read-history-import":
+      return i18n.t("Read by a mapping");
+    case "order-history-storing":
+      return i18n.t("Ordered to be stored");
+    case "finish-history-import":
+    case "store-history":
+      return i18n.t("Stored");
+    case "cancel-history-import":
+      return i18n.t("Cancelled");
+    case "change-history-stretches":
+      return i18n.t("Stretches changed");
+    case "export-history":
+      return i18n.t("Levels exported");
     case "record-sample":
     case "record-shift":
     case "record-run":
@@ -114,6 +154,16 @@ export function actionWord(i18n: I18n, action: string): string {
     case "void-shift":
     case "void-run":
       return i18n.t("Struck out");
+    case "record-workplace-change":
+      return i18n.t("Entered");
+    case "strike-workplace-change":
+      return i18n.t("Struck out");
+    case "set-survey-state":
+      return i18n.t("State changed");
+    case "adopt-survey":
+      return i18n.t("Results adopted");
+    case "set-remeasure-interval":
+      return i18n.t("Changed");
     case "record-absence":
       return i18n.t("Marked absent");
     case "withdraw-absence":

@@ -1,7 +1,7 @@
 import { expect, test } from "vitest";
 import { FindingRow } from "../../../shared/schemas/finding";
 import { CrewProgress } from "../../../shared/schemas/waiting";
-import { crewMoment, groupOf, placeFindings } from "./due";
+import { crewMoment, groupOf, nextShiftOf, placeFindings } from "./due";
 
 const id = (last: number) => `00000000-0000-4000-8000-${String(last).padStart(12, "0")}`;
 const today = "2026-12-01";
@@ -36,6 +36,7 @@ const crew = CrewProgress.parse({
   siteId: id(90),
   timeZone: "Europe/London",
   date: today,
+  nextDate: "2026-12-02",
   start: "06:00",
   lengthMin: 480,
   members: 8,
@@ -60,7 +61,17 @@ test.each([
   ["protects-too-much", "new", "2026-12-20", "later"],
   ["reading-missing", "new", null, "later"],
 ] as const)("%s, %s, due %s: %s", (kind, state, dueOn, group) => {
-  expect(groupOf(finding({ kind, state, dueOn }), today)).toBe(group);
+  expect(groupOf(finding({ kind, state, dueOn }), today, today)).toBe(group);
+});
+
+test("what is due by the crew's next shift comes before the worker is in noise again", () => {
+  const now = (time: string) => ({ today, time });
+  expect(nextShiftOf(finding(), [crew], now("05:40"))).toBe(today);
+  expect(nextShiftOf(finding(), [crew], now("17:50"))).toBe("2026-12-02");
+  expect(nextShiftOf(finding({ crewName: null }), [crew], now("17:50"))).toBe(today);
+  const due = finding({ kind: "over-limit-at-ear", state: "in-hand", dueOn: "2026-12-02" });
+  expect(groupOf(due, today, today)).toBe("this-week");
+  expect(groupOf(due, today, "2026-12-02")).toBe("before-noise");
 });
 
 test("overdue stands first, the longest of it at the top", () => {
@@ -76,6 +87,7 @@ test("overdue stands first, the longest of it at the top", () => {
       other(3, { kind: "reading-gap", dueOn: "2026-11-29" }),
       other(4, { kind: "wearing-unknown", dueOn: "2026-11-20" }),
     ],
+    () => today,
     () => today,
   );
   expect(items.map((item) => [item.finding.id, item.group])).toEqual([
@@ -93,7 +105,7 @@ test("what one order answers stands on one row, read from the latest day", () =>
     kind: "over-limit-at-ear",
     worker: { id: id(51), name: "D. Tavernor", employeeNumber: "4417" },
   });
-  const { items } = placeFindings([over, finding(), gap, other], () => today);
+  const { items } = placeFindings([over, finding(), gap, other], () => today, () => today);
   expect(items.map((item) => [item.finding.id, item.also.map((one) => one.id)])).toEqual([
     [id(1), [id(2)]],
     [id(3), []],
@@ -104,9 +116,9 @@ test("what one order answers stands on one row, read from the latest day", () =>
 test("an order that is marked as done asks for nothing until a later day does", () => {
   const done = finding({ state: "done" });
   const over = finding({ id: id(2), kind: "over-limit-at-ear" });
-  const first = placeFindings([done, over], () => today);
+  const first = placeFindings([done, over], () => today, () => today);
   expect(first.items).toEqual([]);
   expect(first.toBeChecked.map((one) => [one.finding.id, one.also.length])).toEqual([[id(1), 1]]);
-  const later = placeFindings([done, { ...over, lastDate: "2026-12-01" }], () => today);
+  const later = placeFindings([done, { ...over, lastDate: "2026-12-01" }], () => today, () => today);
   expect(later.items.map((item) => item.finding.id)).toEqual([id(2)]);
 });

@@ -43,20 +43,32 @@ export function crewMoment(
 export const crewEnd = ({ start, lengthMin }: Pick<CrewProgress, "start" | "lengthMin">): string =>
   timeOf(minutesOf(start) + lengthMin);
 
-/** Nobody has said that it can wait: it comes before the worker's next time in noise. */
+/** The date on which a worker is in noise next, as far as a crew says it; today where none does. */
+export function nextShiftOf(
+  { crewName, siteId }: Pick<FindingRow, "crewName" | "siteId">,
+  crews: readonly CrewProgress[],
+  now: { readonly today: string; readonly time: string },
+): string {
+  const crew = crews.find((one) => one.name === crewName && one.siteId === siteId);
+  return crew && crewMoment(crew, now.time) === "over" ? crew.nextDate : now.today;
+}
+
+/** It is due by the worker's next time in noise, or nobody has said that it can wait. */
 export const isBeforeNoise = (
   { kind, state, dueOn }: Pick<FindingRow, "kind" | "state" | "dueOn">,
-  today: string,
-): boolean => BEFORE_NOISE.has(kind) && !(state === "in-hand" && dueOn !== null && dueOn > today);
+  nextShift: string,
+): boolean =>
+  BEFORE_NOISE.has(kind) && !(state === "in-hand" && dueOn !== null && dueOn > nextShift);
 
 /** A finding by its date: what is past it stands first of all. */
 export function groupOf(
   finding: Pick<FindingRow, "kind" | "state" | "dueOn">,
   today: string,
+  nextShift: string,
 ): DueGroup {
   const { dueOn } = finding;
   if (dueOn !== null && dueOn < today) return "overdue";
-  if (isBeforeNoise(finding, today)) return "before-noise";
+  if (isBeforeNoise(finding, nextShift)) return "before-noise";
   if (dueOn === today) return "today";
   return dueOn !== null && dueOn <= addDays(today, 7) ? "this-week" : "later";
 }
@@ -80,6 +92,7 @@ export interface Placed {
 export function placeFindings(
   findings: readonly FindingRow[],
   todayAt: (siteId: string) => string,
+  nextShiftAt: (finding: FindingRow) => string,
 ): Placed {
   const bySubject = new Map<string, FindingRow[]>();
   for (const finding of findings) {
@@ -93,7 +106,10 @@ export function placeFindings(
   return {
     items: open
       .filter(({ finding }) => finding.state !== "done")
-      .map((one) => ({ ...one, group: groupOf(one.finding, todayAt(one.finding.siteId)) }))
+      .map((one) => ({
+        ...one,
+        group: groupOf(one.finding, todayAt(one.finding.siteId), nextShiftAt(one.finding)),
+      }))
       .toSorted(
         (a, b) =>
           DUE_GROUPS.indexOf(a.group) - DUE_GROUPS.indexOf(b.group) ||

@@ -1,0 +1,32 @@
+import { useLingui } from "@lingui/react";
+import type { z } from "zod";
+import type { TaskLevelView } from "../../../shared/schemas/task";
+import { TextLink } from "../../components/link";
+import { paths } from "../../paths";
+
+/** Where a spectrum in force comes from: a recording, a survey, or whoever typed it. */
+export function SpectrumSource({ level }: { level: z.infer<typeof TaskLevelView> }) {
+  const { i18n } = useLingui();
+  const { recordingId, surveyId, authorName } = level;
+  if (recordingId !== null)
+    return (
+      <p>
+        {i18n.t("From the recording")}{" "}
+        <TextLink to={paths.recording(recordingId)}>{level.recordingName}</TextLink>
+      </p>
+    );
+  if (surveyId !== null)
+    return (
+      <p>
+        {i18n.t("From the survey")}{" "}
+        <TextLink to={paths.survey(surveyId)}>{level.surveyName}</TextLink>
+      </p>
+    );
+  return (
+    <p>
+      {authorName !== null
+        ? i18n.t("Entered by {name}.", { name: authorName })
+        : i18n.t("Entered with the level.")}
+    </p>
+  );
+}
