@@ -3,8 +3,8 @@ import { AppError, issue, unprocessable } from "../lib/errors";
 import { fileStore, type StagedFile, sniffMediaType } from "../lib/file-store";
 import type { Actor } from "../lib/policy";
 
-/** What an organization may keep, bytes. */
-const QUOTA_BYTES = 100 * 1024 ** 3;
+/** What an organization may keep, bytes as they came: a year of 250,000 time histories in text and as much again. */
+const QUOTA_BYTES = 500 * 1024 ** 3;
 
 /**
  * Keeps a file under its content and returns its id; the same content again is the same file.

@@ -175,4 +175,6 @@ async function store(organizationId: string, ordered: Ordered, watch: Watch): Pr
       values: { historyId },
     });
   });
+  // Kept as evidence and read no more: a year of them is large.
+  await fileStore().pack(organizationId, ordered.sha256);
 }

@@ -1,9 +1,10 @@
 import { createHash, randomUUID } from "node:crypto";
-import { createReadStream, createWriteStream, type ReadStream } from "node:fs";
+import { createReadStream, createWriteStream, existsSync } from "node:fs";
 import { mkdir, open, readdir, rename, rm, stat } from "node:fs/promises";
 import path from "node:path";
-import { Transform } from "node:stream";
+import { type Readable, Transform } from "node:stream";
 import { pipeline } from "node:stream/promises";
+import { createGunzip, createGzip } from "node:zlib";
 import { AppError } from "./errors";
 
 /** A file that has come in and belongs to nobody yet. */
@@ -20,9 +21,12 @@ export interface FileStore {
   stage(content: NodeJS.ReadableStream, limitBytes: number): Promise<StagedFile>;
   /** Puts a staged file where its content has its place; a second time it is there already. */
   keep(organizationId: string, staged: StagedFile): Promise<void>;
-  /** Path of a kept file, for those that read it in pieces. */
+  /** Path of a kept file that is not packed, for those that read it in pieces. */
   pathOf(organizationId: string, sha256: string): string;
-  read(organizationId: string, sha256: string): ReadStream;
+  /** Its content as it came, packed or not. */
+  read(organizationId: string, sha256: string): Readable;
+  /** Compresses a kept file that is only ever read whole. */
+  pack(organizationId: string, sha256: string): Promise<void>;
   remove(organizationId: string, sha256: string): Promise<void>;
   /** Takes away what a process that ended left on its way in. */
   sweep(): Promise<void>;
@@ -30,6 +34,8 @@ export interface FileStore {
 
 /** Nothing is written to for so long and still on its way in, ms. */
 const FORGOTTEN_MS = 24 * 60 * 60 * 1000;
+
+const packed = (target: string) => `${target}.gz`;
 
 class FolderStore implements FileStore {
   constructor(readonly folder: string) {}
@@ -63,7 +69,7 @@ class FolderStore implements FileStore {
   async keep(organizationId: string, staged: StagedFile): Promise<void> {
     const target = this.pathOf(organizationId, staged.sha256);
     await mkdir(path.dirname(target), { recursive: true });
-    if (await stat(target).catch(() => null)) await rm(staged.path, { force: true });
+    if (existsSync(target)) await rm(staged.path, { force: true });
     else await rename(staged.path, target);
   }
 
@@ -71,12 +77,32 @@ class FolderStore implements FileStore {
     return path.join(this.folder, "kept", organizationId, sha256.slice(0, 2), sha256);
   }
 
-  read(organizationId: string, sha256: string): ReadStream {
-    return createReadStream(this.pathOf(organizationId, sha256));
+  read(organizationId: string, sha256: string): Readable {
+    const target = this.pathOf(organizationId, sha256);
+    return existsSync(packed(target))
+      ? createReadStream(packed(target)).pipe(createGunzip())
+      : createReadStream(target);
+  }
+
+  async pack(organizationId: string, sha256: string): Promise<void> {
+    const target = this.pathOf(organizationId, sha256);
+    if (!existsSync(target)) return;
+    const half = `${target}.${randomUUID()}`;
+    try {
+      await pipeline(createReadStream(target), createGzip(), createWriteStream(half));
+      await rename(half, packed(target));
+    } catch (error) {
+      await rm(half, { force: true });
+      throw error;
+    }
+    // Whoever has it open reads on to its end.
+    await rm(target, { force: true });
   }
 
   async remove(organizationId: string, sha256: string): Promise<void> {
-    await rm(this.pathOf(organizationId, sha256), { force: true });
+    const target = this.pathOf(organizationId, sha256);
+    await rm(target, { force: true });
+    await rm(packed(target), { force: true });
   }
 
   async sweep(): Promise<void> {

@@ -12,15 +12,14 @@ export function MeasuringWays() {
     { to: paths.surveys, label: i18n.t("Surveys"), isOffice: true },
     { to: paths.outAndBack, label: i18n.t("Out and back"), isOffice: true },
     { to: paths.runs, label: i18n.t("Runs"), isOffice: false },
+    { to: paths.historyImports, label: i18n.t("Time histories"), isOffice: true },
     { to: paths.recordings, label: i18n.t("Recordings"), isOffice: true },
     { to: paths.instruments, label: i18n.t("Instruments"), isOffice: false },
   ].filter((item) => isOffice || !item.isOffice);
-  // Addresses beneath these belong to others: /measuring/surveys is not "To be measured", /runs/instruments no run.
-  const isWhole = new Set<string>([paths.toMeasure, paths.runs]);
   return (
     <span className="ways">
       {items.map(({ to, label }) => (
-        <NavLink key={to} className="link" to={to} end={isWhole.has(to)}>
+        <NavLink key={to} className="link" to={to} end={to === paths.toMeasure}>
           {label}
         </NavLink>
       ))}

@@ -23,7 +23,7 @@ function useNavigation(user: SessionUser): NavItem[] {
     auditor && { to: paths.yearFile, label: i18n.t("Year file") },
     (officer || auditor) && { to: paths.workers, label: i18n.t("Workers") },
     (officer || auditor) && { to: paths.findings, label: i18n.t("Findings") },
-    (officer || auditor) && { to: paths.runs, label: i18n.t("Runs") },
+    (officer || auditor) && { to: paths.toMeasure, label: i18n.t("Measuring") },
     (officer || auditor) && { to: paths.protectors, label: i18n.t("Protectors") },
     auditor && { to: paths.trail, label: i18n.t("Trail") },
     (officer || auditor) && { to: paths.rules, label: i18n.t("Rules") },
@@ -86,26 +86,26 @@ export function SignedIn() {
             place={isSheet ? setPlace : undefined}
             account={
               isAccountAtFoot ? undefined : (
-              <>
-                {hasRole(user, "officer", "auditor") && (
-                  <Suspense fallback={<SearchBoxFrame />}>
-                    <SearchBox />
-                  </Suspense>
-                )}
-                {!isPlain && (
-                  <span className="account-site">
-                    {user.sites.length === 1 ? user.sites[0]?.name : user.organizationName}
-                  </span>
-                )}
-                {isPlain && !hasRole(user, "worker") && <b>{user.name}</b>}
-                {isPlain ? (
-                  <AccountActions />
-                ) : (
-                  <Suspense fallback={<b>{whoAndWhat}</b>}>
-                    <AccountMenu>{whoAndWhat}</AccountMenu>
-                  </Suspense>
-                )}
-              </>
+                <>
+                  {hasRole(user, "officer", "auditor") && (
+                    <Suspense fallback={<SearchBoxFrame />}>
+                      <SearchBox />
+                    </Suspense>
+                  )}
+                  {!isPlain && (
+                    <span className="account-site">
+                      {user.sites.length === 1 ? user.sites[0]?.name : user.organizationName}
+                    </span>
+                  )}
+                  {isPlain && !hasRole(user, "worker") && <b>{user.name}</b>}
+                  {isPlain ? (
+                    <AccountActions />
+                  ) : (
+                    <Suspense fallback={<b>{whoAndWhat}</b>}>
+                      <AccountMenu>{whoAndWhat}</AccountMenu>
+                    </Suspense>
+                  )}
+                </>
               )
             }
           />
