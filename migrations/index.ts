@@ -7,6 +7,7 @@ import { measurements } from "./20261201100000-measurements";
 import { rulesChangedSteps } from "./20261201110000-rules-changed-steps";
 import { historyImports } from "./20261201120000-history-imports";
 import { recordings } from "./20261201130000-recordings";
+import { atEarBounds } from "./20261201140000-at-ear-bounds";
 
 /** In the order in which they run. */
 export const migrations = [
@@ -19,4 +20,5 @@ export const migrations = [
   rulesChangedSteps,
   historyImports,
   recordings,
+  atEarBounds,
 ];

@@ -1,5 +1,5 @@
 import { execFile } from "node:child_process";
-import { mkdtempSync, rmSync, writeFileSync } from "node:fs";
+import { mkdtempSync, readFileSync, rmSync, writeFileSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { promisify } from "node:util";
@@ -45,6 +45,17 @@ test("a day's levels come out unrounded, with the working where it is asked for"
   // ISO 9612, 9.2: 10 lg(1/8 · Σ Tm · 10^(0.1 Lm)).
   expect(evaluation.outsideDb).toBeCloseTo(10 * Math.log10((2 * 10 ** 10 + 6 * 10 ** 6) / 8), 9);
   expect(working).not.toBeNull();
+});
+
+test("the sample request of the docs is computed", async () => {
+  const sample = readFileSync(join(import.meta.dirname, "../docs/evaluate-example.json"), "utf8");
+  const { code, stdout } = await evaluate(sample);
+  expect(code).toBe(0);
+  // ISO 9612, 9.2, with the rest of the shift as stated.
+  expect(JSON.parse(stdout).evaluation.outsideDb).toBeCloseTo(
+    10 * Math.log10((180 * 10 ** 9.64 + 240 * 10 ** 7.81 + 60 * 10 ** 6.2) / 480),
+    9,
+  );
 });
 
 test("an array is answered by an array, in its order", async () => {

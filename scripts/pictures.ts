@@ -56,6 +56,27 @@ const resultPath: Shot["path"] = async (ask) => {
   return `/workers/${found?.worker?.id}/days/${found?.figures?.date}`;
 };
 
+/** The survey that is under way, and its group. */
+const surveyUnderWay = async (ask: (path: string) => Promise<unknown>) => {
+  const { rows } = (await ask("/surveys?state=measuring&limit=10")) as {
+    rows: { id: string; jobId: string; strategy: string }[];
+  };
+  return rows.find(({ strategy }) => strategy === "task") ?? rows[0];
+};
+const surveyPath: Shot["path"] = async (ask) =>
+  `/measuring/surveys/${(await surveyUnderWay(ask))?.id}`;
+const groupPath: Shot["path"] = async (ask) =>
+  `/measuring/groups/${(await surveyUnderWay(ask))?.jobId}`;
+/** A history with a stretch left out, and a bracket for each sample: one of that survey's runs. */
+const historyPath: Shot["path"] = async (ask) => {
+  const survey = await surveyUnderWay(ask);
+  const { rows } = (await ask(`/runs?surveyId=${survey?.id}&limit=50`)) as {
+    rows: { historyId: string | null; taskId: string | null }[];
+  };
+  const run = rows.find(({ historyId, taskId }) => historyId !== null && taskId === null);
+  return `/measuring/histories/${run?.historyId}`;
+};
+
 const shots: Shot[] = [
   { file: "waiting", role: "officer", path: "/waiting", width: 1440, height: 990 },
   {
@@ -68,6 +89,17 @@ const shots: Shot[] = [
   },
   { file: "day-entry", role: "officer", path: dayPath, width: 1600, height: 1000 },
   { file: "working", role: "officer", path: resultPath, width: 1280, height: 1770 },
+  { file: "to-measure", role: "officer", path: "/measuring", width: 1280, height: 760 },
+  { file: "survey", role: "officer", path: surveyPath, width: 1280, height: 1160 },
+  {
+    file: "out-and-back",
+    role: "officer",
+    path: "/measuring/out-and-back",
+    width: 1280,
+    height: 900,
+  },
+  { file: "time-history", role: "officer", path: historyPath, width: 1280, height: 1340 },
+  { file: "group", role: "officer", path: groupPath, width: 1280, height: 1300 },
   { file: "crew-sheet", role: "supervisor", path: "/crew-sheet", width: 400, height: 860 },
   { file: "my-page", role: "worker", path: "/me", width: 390, height: 844 },
   { file: "year-file", role: "auditor", path: "/year-file", width: 1280, height: 960 },

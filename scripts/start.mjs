@@ -14,13 +14,14 @@ import {
   applicationEnvironment,
   catcherEnvironment,
   catcherScript,
+  issuerUrl,
   providerEnvironment,
   providerScript,
 } from "./lib/environment.mjs";
 import { diskFull, explainFileError, Failure } from "./lib/failure.mjs";
 import { lockHolder, tryLock, unlock } from "./lib/lock.mjs";
 import { ensurePackages, requireNode } from "./lib/packages.mjs";
-import { findFreePort, isPortFree } from "./lib/ports.mjs";
+import { holdFreePort, holdPort } from "./lib/ports.mjs";
 import { endActiveRuns, endGroup, isSameProcess, run } from "./lib/processes.mjs";
 import { projectFolder } from "./lib/project.mjs";
 
@@ -103,32 +104,54 @@ async function endLeftovers() {
 }
 
 /**
- * Ports stay what they were at the first start: the provider's address is part of everybody's
- * sign-in, the application's is in mails and bookmarks.
+ * Ports stay what they were at the last start, for the application's is in mails and bookmarks; where another program has
+ * taken one meanwhile, a free one takes its place from then on. They are held until the programs take them: installing and
+ * filling last minutes, in which another start would find them free.
  */
-async function choosePorts() {
+async function holdPorts() {
   const file = inData("ports.json");
   const known = readJson(file) ?? {};
   const ports = {};
+  const held = [];
   for (const [name, what] of [
     ["web", "the application"],
     ["signIn", "the local sign-in provider"],
-    ["smtp", null],
-    ["mails", null],
-    ["client", null],
+    ["smtp", "the mail catcher"],
+    ["mails", "the page of caught mails"],
+    ["client", "the hot reload"],
   ]) {
-    const asked = name === "web" && process.env.PORT ? Number(process.env.PORT) : known[name];
-    if (asked && (await isPortFree(asked))) {
-      ports[name] = asked;
-    } else if (asked && what) {
-      const way = name === "web" ? "choose another with  PORT=… npm start" : "stop that program";
-      throw new Failure(`Port ${asked} for ${what} is in use by another program: ${way}.`);
-    } else {
-      ports[name] = await findFreePort(FIRST_PORT, Object.values({ ...known, ...ports }));
+    const isTold = name === "web" && Boolean(process.env.PORT);
+    const asked = isTold ? Number(process.env.PORT) : known[name];
+    let hold = asked ? await holdPort(asked) : null;
+    if (!hold && isTold) {
+      throw new Failure(
+        `Port ${asked} for ${what} is in use by another program: choose another with  PORT=… npm start.`,
+      );
     }
+    hold ??= await holdFreePort(FIRST_PORT, Object.values({ ...known, ...ports }));
+    if (asked && hold.port !== asked)
+      console.log(
+        `Port ${asked} for ${what} is in use by another program: ${hold.port} from now on`,
+      );
+    ports[name] = hold.port;
+    held.push(hold);
   }
   writeJson(file, ports);
-  return ports;
+  const release = () => Promise.all(held.map((hold) => hold.release()));
+  return { ports, release };
+}
+
+/**
+ * A sign-in is bound to the provider's address. This database knows no provider but the local one, so that people bound
+ * at its earlier port go on at the present one.
+ */
+async function followIssuer(ports) {
+  const issuer = issuerUrl(ports);
+  await cluster.sql(
+    `UPDATE users u SET issuer = '${issuer}' WHERE u.issuer LIKE 'http://localhost:%' AND u.issuer <> '${issuer}'
+       AND NOT EXISTS (SELECT FROM users other WHERE other.issuer = '${issuer}' AND other.subject = u.subject)`,
+    { database: DATABASE, role: "owner" },
+  );
 }
 
 function readSecrets() {
@@ -283,7 +306,7 @@ async function start() {
   await ensurePackages();
   await goOn();
   mkdirSync(files.logs, { recursive: true });
-  const ports = await choosePorts();
+  const { ports, release } = await holdPorts();
   const publicUrl = `http://127.0.0.1:${isDev ? ports.client : ports.web}`;
   const secrets = readSecrets();
   opening = openCluster({
@@ -307,6 +330,8 @@ async function start() {
     dataDir: files.app,
   });
   await fillDatabase(env);
+  await followIssuer(ports);
+  await release();
   children = new Children({ logFolder: files.logs, show: isDev, onDeath: endWith });
   startProcesses({ env, ports, publicUrl, secrets });
   writeJson(files.running, { address: publicUrl, children: children.identities() });

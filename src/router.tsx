@@ -119,7 +119,7 @@ export function createRoutes(queryClient: QueryClient, i18n: I18n): RouteObject[
           element: <RouteErrorBoundary />,
           children: [
             pageRoute(paths.me, () => import("./routes/me-page")),
-            withWords(["office"], waitingRoutes, ["officer"]),
+            withWords(["office", "rules"], waitingRoutes, ["officer"]),
             withWords(["office", "rules"], officerRoutes, ["officer", "auditor", "supervisor"]),
             withWords(["day", "rules"], dayRoutes, ["officer"]),
             withWords(["register", "office", "rules"], registerRoutes, [
@@ -127,7 +127,10 @@ export function createRoutes(queryClient: QueryClient, i18n: I18n): RouteObject[
               "auditor",
               "supervisor",
             ]),
-            withWords(["measuring", "register", "office", "rules"], measuringRoutes, ["officer", "auditor"]),
+            withWords(["measuring", "register", "office", "rules"], measuringRoutes, [
+              "officer",
+              "auditor",
+            ]),
             withWords(["people", "rules"], peopleRoutes, []),
             pageRoute("*", () => import("./routes/not-found")),
           ],

@@ -19,6 +19,31 @@ export async function findFreePort(from, taken = []) {
   throw new Error(`no free port between ${from} and 32767`);
 }
 
+/**
+ * Keeps a port from others until `release` is called just before its own program takes it; null where another program
+ * has it.
+ */
+export function holdPort(port, host = "127.0.0.1") {
+  return new Promise((done) => {
+    const holder = createServer((connection) => connection.destroy());
+    const release = () => new Promise((released) => holder.close(released));
+    holder.once("error", () => done(null));
+    holder.listen({ port, host, exclusive: true }, () => {
+      holder.unref();
+      done({ port, release });
+    });
+  });
+}
+
+/** The first port from `from` upwards that could be held; see findFreePort. */
+export async function holdFreePort(from, taken = []) {
+  for (let port = from; ; port += 1) {
+    port = await findFreePort(port, taken);
+    const held = await holdPort(port);
+    if (held) return held;
+  }
+}
+
 /** A random place to start looking, so that runs beside each other rarely meet. */
 export function randomPort() {
   return 15_000 + Math.floor(Math.random() * 15_000);

@@ -130,6 +130,20 @@ export const WORKERS: readonly DemoWorker[] = [
     hiredDaysAgo: 320,
     leftDaysAgo: 100,
   },
+  {
+    crew: "Fettling lates",
+    number: "4151",
+    name: "O. Lowenthal-Pike",
+    job: "Core maker",
+    hiredDaysAgo: 9,
+  },
+  {
+    crew: "Fettling lates",
+    number: "4153",
+    name: "A. Oyelaran-Dale",
+    job: "Core maker",
+    hiredDaysAgo: 9,
+  },
 
   { crew: "Plate shop days", number: "2875", name: "P. Iwanek", job: "Hammer hand" },
   { crew: "Plate shop days", number: "2877", name: "D. Quintanar", job: "Hammer hand" },

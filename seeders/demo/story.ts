@@ -42,7 +42,9 @@ export interface Departure {
 
 export interface DemoRun {
   instrument: string;
-  checks: readonly [beforeDb: number, afterDb: number];
+  checks: readonly [beforeDb: number, afterDb: number | null];
+  /** Why it counts in spite of what speaks against it. */
+  keptReason?: string;
   unusual?: string;
   readings: readonly {
     settings: MeterSettings;
@@ -83,7 +85,15 @@ export type Deed =
         reason: string;
       };
     }
-  | { taskLevel: { task: string; levelDb: number; samplesDb: readonly number[]; reason: string } }
+  | {
+      measureAnew: {
+        task: string;
+        job: string;
+        survey: string;
+        samplesDb: readonly number[];
+        reason: string;
+      };
+    }
   | { rules: { site: SiteKey; governing: string; comparison: readonly string[]; reason: string } }
   | { finding: About; step: Stepping }
   | {
@@ -449,6 +459,23 @@ export const STORY: readonly Chapter[] = [
     ],
   },
   {
+    title:
+      "N. Petrosyan-Cole's dosimeter drifted by 0.8 dB over the shift; the run is kept, and says so",
+    departures: [
+      {
+        worker: "4130",
+        day: 6,
+        minutes: { Grinding: 160, Chipping: 80, Linishing: 110, Inspection: 100, Break: 30 },
+        run: {
+          ...energyRun(99.6, 137.2),
+          checks: [114.0, 113.2],
+          keptReason:
+            "Calibrator cold from the yard at the second check; at noon the next day it read 114.0 again.",
+        },
+      },
+    ],
+  },
+  {
     title: "E. Kvarnberg: an hour of which nobody knows",
     departures: [{ worker: "4128", day: 2, leavesOutMin: 60 }],
   },
@@ -506,6 +533,27 @@ export const STORY: readonly Chapter[] = [
     ],
   },
 
+  {
+    title: "Chipping hammers: peaks past the upper action value, for the whole group",
+    steps: [
+      fettling({ in: 2 }, "11:00", {
+        finding: {
+          job: "Fettler",
+          kind: "peak-or-ceiling",
+          criterion: "uk-2005:upper-action-peak",
+        },
+        step: { kind: "take-in-hand", dueInDays: 600 },
+      }),
+      fettling(24, "11:05", {
+        finding: {
+          job: "Fettler",
+          kind: "peak-or-ceiling",
+          criterion: "uk-2005:upper-action-peak",
+        },
+        step: { kind: "comment", text: "Hammers with a damped chisel are ordered for trial." },
+      }),
+    ],
+  },
   {
     title: "A hammer blow past the peak: P. Iwanek's dosimeter",
     departures: [
@@ -706,9 +754,10 @@ export const STORY: readonly Chapter[] = [
     title: "A new extraction hood at the linishers: the task was measured again",
     steps: [
       fettling(110, "15:00", {
-        taskLevel: {
+        measureAnew: {
           task: "Linishing",
-          levelDb: 95.9,
+          job: "Fettler",
+          survey: "Linishers after the new extraction hood",
           samplesDb: [95.5, 96.6, 95.5],
           reason: "New extraction hood, measured again",
         },

@@ -100,6 +100,7 @@ function toRun(
     checkBeforeDb,
     checkAfterDb,
     covers: "shift",
+    keptReason: run.keptReason,
     unusual: run.unusual,
     readings: run.readings.map(({ peakDb, ...reading }) => ({
       ...reading,

@@ -1,12 +1,15 @@
 import { randomUUID } from "node:crypto";
 import { recordAudit } from "../../server/lib/audit";
 import { execute, rows } from "../../server/lib/db";
+import { openFileStore } from "../../server/lib/file-store";
 import type { DayKey } from "../../server/queries/day-inputs";
 import { addDays } from "../../shared/time/zone";
 import { PEOPLE } from "../demo/people";
 import { INSTRUMENTS, ORGANIZATION, SITES, type SiteKey } from "../demo/programme";
 import { daysBetween } from "./calendar";
 import { computeDays, enterDay, staleDays, storeDays } from "./days";
+import { layOutHistories } from "./histories";
+import { measureBeforehand, measureSince, sendOutToday } from "./measurements";
 import { leaveSomeToTell, markSent, tellInThePast } from "./notices";
 import { writePeopleFile } from "./people-file";
 import { Demo, known, layOutProgramme } from "./programme";
@@ -45,19 +48,25 @@ export async function layOutDemo({
   publicUrl,
   analyze,
 }: Filling): Promise<string> {
+  openFileStore(dataFolder);
   const demo = new Demo(now, Math.round(months * DAYS_A_MONTH));
   await layOutProgramme(demo);
+  await measureBeforehand(demo);
   const story = dateStory(demo);
-  const clock = demo.calendar("ostmere");
-  const morningOf = (date: string) =>
-    new Date(Math.min(clock.instant(date, "08:30").getTime(), now.getTime() - 120_000));
+  /** On the site's own clock: who is told of a day is told after it was noticed there. */
+  const morningOf = (date: string, site: SiteKey) =>
+    new Date(
+      Math.min(demo.calendar(site).instant(date, "08:30").getTime(), now.getTime() - 120_000),
+    );
   const compute = async (keys: readonly DayKey[], at: Date) =>
     tellInThePast(demo, await computeDays(demo, keys, at), at, publicUrl);
 
   let unstored: string[] = [];
-  const storeUp = async (at: Date) => {
-    for (const site of siteKeys)
+  const storeUp = async (date: string) => {
+    for (const site of siteKeys) {
+      const at = morningOf(date, site);
       await compute(await storeDays(demo, story, site, unstored, at), at);
+    }
     unstored = [];
   };
   const first = siteKeys.map((site) => demo.calendar(site).first).sort()[0]!;
@@ -68,7 +77,7 @@ export async function layOutDemo({
   for (let date = first; date <= last; date = addDays(date, 1)) {
     if (ANALYZED_AFTER_DAYS.includes(daysBetween(first, date))) await analyze();
     const steps = story.steps.filter((step) => step.date === date);
-    if (steps.length > 0) await storeUp(morningOf(date));
+    if (steps.length > 0) await storeUp(date);
     for (const step of steps) {
       await takeStep(demo, step, now);
       const at = new Date(
@@ -80,9 +89,12 @@ export async function layOutDemo({
     const isDue =
       new Date(`${date}T00:00:00Z`).getUTCDay() === FRIDAY ||
       daysBetween(date, last) <= DAILY_FROM_DAYS_AGO;
-    if (isDue) await storeUp(morningOf(addDays(date, 1)));
+    if (isDue) await storeUp(addDays(date, 1));
     for (const site of siteKeys) await enterDay(demo, story, site, date, now);
   }
+  await measureSince(demo);
+  await layOutHistories(demo, story);
+  await sendOutToday(demo, now);
   await tellOfCalibration(demo);
   await markSent(demo, now, publicUrl);
   await leaveSomeToTell(demo);

@@ -4,7 +4,7 @@ import type { OpenedFinding } from "../../server/commands/update-findings";
 import { noticeMail } from "../../server/jobs/send-notice";
 import { execute, rows } from "../../server/lib/db";
 import { groupBy } from "../../server/lib/group-by";
-import { NOTIFIED_KINDS } from "../../shared/findings/notified";
+import { isNotified } from "../../shared/findings/notified";
 import { SITES, type SiteKey } from "../demo/programme";
 import type { Demo } from "./programme";
 import { known } from "./programme";
@@ -32,14 +32,11 @@ export async function tellInThePast(
   at: Date,
   publicUrl: string,
 ): Promise<void> {
-  const news = opened.filter(({ kind }) => NOTIFIED_KINDS.has(kind));
+  const news = opened.filter(isNotified);
   for (const [key, ofEntry] of groupBy(news, ({ siteId, date }) => `${siteId} ${date}`)) {
-    const [siteId, date] = key.split(" ") as [string, string];
+    const siteId = key.split(" ")[0]!;
     const site = [...demo.sites].find(([, { id }]) => id === siteId)![0];
-    const entered = new Date(
-      Math.min(demo.calendar(site).instant(date, "22:30").getTime(), at.getTime()),
-    );
-    await demo.at(entered, () => layDown(demo, site, siteId, ofEntry, entered));
+    await demo.at(at, () => layDown(demo, site, siteId, ofEntry, at));
   }
   await markSent(demo, at, publicUrl);
 }

@@ -18,6 +18,7 @@ import { Actor } from "../../server/lib/policy";
 import type { Instrument } from "../../server/models/instrument";
 import type { ProtectorModel } from "../../server/models/protector";
 import type { Area, Site } from "../../server/models/site";
+import type { Survey } from "../../server/models/survey";
 import type { Job, Task } from "../../server/models/task";
 import type { Crew, Worker } from "../../server/models/worker";
 import { NewProtectorInput } from "../../shared/schemas/protector";
@@ -53,6 +54,8 @@ export class Demo {
   readonly instruments = new Map<string, Instrument>();
   readonly actors = new Map<string, Actor>();
   readonly codes = new Map<string, string>();
+  /** With those drawn for it. */
+  readonly surveys = new Map<string, { survey: Survey; drawn: readonly string[] }>();
 
   constructor(
     readonly now: Date,
@@ -92,9 +95,11 @@ export const taskKey = (site: SiteKey, name: string) => `${site} ${name}`;
 export const siteOfWorker = (number: string): SiteKey =>
   siteOfCrew(WORKERS.find((worker) => worker.number === number)!.crew);
 
-/** When the programme itself was written down: the Friday before, so to speak. */
-const setUpAt = (calendar: SiteCalendar): Date =>
-  calendar.instant(calendar.daysAgo(calendar.spanDays + 3), "10:00");
+/** The first surveys took the weeks between this and the first day. */
+const SET_UP_BEFORE_DAYS = 60;
+/** When the programme itself was written down. */
+export const setUpAt = (calendar: SiteCalendar): Date =>
+  calendar.instant(calendar.daysAgo(calendar.spanDays + SET_UP_BEFORE_DAYS), "10:00");
 
 /** Organization, people and programme, by the application's own commands. */
 export async function layOutProgramme(demo: Demo): Promise<void> {
@@ -152,9 +157,8 @@ async function layOutSites(demo: Demo, actor: Actor): Promise<void> {
       area.name,
       await createArea(actor, { ...area, siteId: siteId(site), isArchived: false }),
     );
-  for (const { site, area, name, peakDb, samplesDb, ...level } of TASKS) {
+  for (const { site, area, name, peakDb, samplesDb, sinceDaysAgo, ...level } of TASKS) {
     const areaId = area === null ? null : known(demo.areas, area).id;
-    const isSampled = samplesDb.length > 0;
     demo.tasks.set(
       taskKey(site, name),
       await createTask(
@@ -163,14 +167,19 @@ async function layOutSites(demo: Demo, actor: Actor): Promise<void> {
           siteId: siteId(site),
           areaId,
           name,
-          level: {
-            ...level,
-            samplesDb,
-            peak: { levelDb: peakDb, weighting: "C" },
-            instrument: isSampled ? "class-1-meter" : null,
-            grade: isSampled ? "measured-group" : "task-level",
-            effectiveFrom: firstDay(demo, site),
-          },
+          // What was sampled gets its level from its survey.
+          level:
+            samplesDb.length > 0
+              ? null
+              : {
+                  ...level,
+                  peak: { levelDb: peakDb, weighting: "C" },
+                  grade: site === "ostmere" ? "estimate" : "task-level",
+                  effectiveFrom:
+                    sinceDaysAgo === undefined
+                      ? firstDay(demo, site)
+                      : demo.calendar(site).daysAgo(sinceDaysAgo),
+                },
         }),
       ),
     );

@@ -167,17 +167,34 @@ function addRoutineRuns({ shifts }: PlannedDay, date: string, ago: number): void
     if (new Date(`${date}T00:00:00Z`).getUTCDay() !== weekday) continue;
     const able = shifts.filter((shift) => shift.crew.name === crew.name && !shift.isTold);
     const chosen = able[Math.floor(able.length * chance(crew.name, "wearer", week))];
-    if (chosen) chosen.run = routineRun(chosen);
+    if (chosen) chosen.run = routineRun(chosen, ago);
   }
 }
 
-function routineRun(shift: PlannedShift): DemoRun {
-  const { site } = shift.crew;
+/**
+ * The lates wear the dosimeter with the white band, and nobody checks it when it comes back: that is what its failed
+ * calibration casts doubt on.
+ */
+const UNCHECKED = {
+  crew: "Fettling lates",
+  instrument: "Dosimeter, white band",
+  fromDaysAgo: 54,
+  toDaysAgo: 18,
+};
+
+function routineRun(shift: PlannedShift, ago: number): DemoRun {
+  const { site, name } = shift.crew;
+  const isUnchecked =
+    name === UNCHECKED.crew && ago <= UNCHECKED.fromDaysAgo && ago >= UNCHECKED.toDaysAgo;
   const drift = Math.round(3 * chance(shift.worker.number, "drift", shift.date)) / 10;
   const deviationDb = 2 * chance(shift.worker.number, "reading", shift.date) - 1;
   return {
-    instrument: site === "ostmere" ? "Dosimeter, blue band" : "Dosimeter, red band",
-    checks: [114.0, 114.0 - drift],
+    instrument: isUnchecked
+      ? UNCHECKED.instrument
+      : site === "ostmere"
+        ? "Dosimeter, blue band"
+        : "Dosimeter, red band",
+    checks: [114.0, isUnchecked ? null : 114.0 - drift],
     readings:
       site === "ostmere"
         ? [{ settings: ENERGY_MEAN, ...measured(shift, ENERGY_MEAN, deviationDb) }]
@@ -189,7 +206,7 @@ function routineRun(shift: PlannedShift): DemoRun {
 }
 
 /** An energy mean of blows and bursts lies above the 5 dB mean of the same minutes, which lies below that of a truck. */
-const UNSTEADY_DB = 3;
+export const UNSTEADY_DB = 3;
 
 /** What a dosimeter shows that has been through these tasks, a little off as instruments and days are. */
 function measured(

@@ -1,7 +1,6 @@
 import { addCrewMember } from "../../server/commands/add-crew-member";
 import { addProtectorRevision } from "../../server/commands/add-protector-revision";
 import { addSiteSettings } from "../../server/commands/add-site-settings";
-import { addTaskLevel } from "../../server/commands/add-task-level";
 import { assignProtector } from "../../server/commands/assign-protector";
 import { correctShift } from "../../server/commands/correct-shift";
 import { handleFinding } from "../../server/commands/handle-finding";
@@ -12,11 +11,11 @@ import { Shift } from "../../server/models/shift";
 import { savedShifts } from "../../server/queries/saved-shifts";
 import type { FindingStepInput } from "../../shared/schemas/finding";
 import { ProtectorRevisionInput } from "../../shared/schemas/protector";
-import { TaskLevelInput } from "../../shared/schemas/task";
 import { addDays } from "../../shared/time/zone";
-import { CREWS, TASKS } from "../demo/programme";
+import { CREWS } from "../demo/programme";
 import { PROTECTORS } from "../demo/protectors";
 import type { About } from "../demo/story";
+import { measureTaskAnew } from "./measurements";
 import { type Demo, known, taskKey } from "./programme";
 import type { DatedStep } from "./story";
 
@@ -31,10 +30,15 @@ export async function takeStep(demo: Demo, step: DatedStep, now: Date): Promise<
   const instant = new Date(
     Math.min(calendar.instant(step.date, step.at).getTime(), now.getTime() - 30_000),
   );
-  await demo.at(instant, () => perform(demo, step));
+  // Its samples and its levels were recorded at times of their own.
+  if ("measureAnew" in step) await measureTaskAnew(demo, step.site, step.date, step.measureAnew);
+  else await demo.at(instant, () => perform(demo, step));
 }
 
-async function perform(demo: Demo, step: DatedStep): Promise<void> {
+async function perform(
+  demo: Demo,
+  step: Exclude<DatedStep, { measureAnew: unknown }>,
+): Promise<void> {
   const actor = known(demo.actors, step.by);
   const crew = CREWS.find(({ name }) => name === step.crew)!;
   const dateOf = (day: number) => demo.calendar(step.site).workdayAgo(crew, day)!;
@@ -61,27 +65,6 @@ async function perform(demo: Demo, step: DatedStep): Promise<void> {
       actor,
       known(demo.models, model),
       ProtectorRevisionInput.parse({ ...facts, effectiveFrom: dateOf(fromDay), reason }),
-    );
-  } else if ("taskLevel" in step) {
-    const { task, levelDb, samplesDb, reason } = step.taskLevel;
-    const first = TASKS.find(({ site, name }) => site === step.site && name === task)!;
-    await addTaskLevel(
-      actor,
-      known(demo.tasks, taskKey(step.site, task)),
-      TaskLevelInput.parse({
-        metric: first.metric,
-        levelDb,
-        samplesDb,
-        octaveBandsDb: shifted(first.octaveBandsDb, levelDb - first.levelDb),
-        lcMinusLaDb: first.lcMinusLaDb,
-        lasMaxDb: first.lasMaxDb,
-        peak: { levelDb: first.peakDb, weighting: "C" },
-        instrument: "class-1-meter",
-        grade: "measured-group",
-        effectiveFrom: step.date,
-        sourceNote: first.sourceNote,
-        reason,
-      }),
     );
   } else if ("rules" in step) {
     const { site, governing, comparison, reason } = step.rules;
@@ -167,9 +150,6 @@ async function perform(demo: Demo, step: DatedStep): Promise<void> {
     );
   }
 }
-
-const shifted = (bandsDb: (typeof TASKS)[number]["octaveBandsDb"], byDb: number) =>
-  bandsDb?.map((bandDb) => (bandDb === null ? null : bandDb + byDb)) ?? null;
 
 async function handle(
   demo: Demo,

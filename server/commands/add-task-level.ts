@@ -6,6 +6,7 @@ import { issue, unprocessable } from "../lib/errors";
 import { only } from "../lib/only";
 import type { Actor } from "../lib/policy";
 import type { Task } from "../models/task";
+import { checkLevel } from "./check-task";
 import { markDaysStale } from "./mark-days-stale";
 
 /** A task's noise from a date on, or the correction of what stood from that date. The task's row is locked. */
@@ -15,6 +16,7 @@ export async function addTaskLevel(
   input: TaskLevelInput,
   under: string[] = [],
 ): Promise<void> {
+  checkLevel(input, under);
   const number = await insertTaskLevel(actor, task, input, { under });
   await recordAudit(actor, {
     action: "add-task-level",

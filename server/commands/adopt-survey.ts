@@ -103,5 +103,6 @@ function levelOf(result: TargetResult, { effectiveFrom, reason }: SurveyAdoption
     effectiveFrom,
     sourceNote: "",
     reason,
+    acceptedDoubts: [],
   };
 }

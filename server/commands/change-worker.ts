@@ -46,7 +46,9 @@ export async function changeWorker(
 async function carryLanguage(actor: Actor, workerId: string, change: Changes[string]) {
   const carried = await rows<{ id: string }>(
     `UPDATE users SET language = :to, revision = revision + 1
-     WHERE worker_id = :workerId AND language = :from AND revoked_at IS NULL RETURNING id`,
+     WHERE worker_id = :workerId AND language = :from AND revoked_at IS NULL
+       AND NOT EXISTS (SELECT 1 FROM audit_events e WHERE e.subject_kind = 'user' AND e.subject_id = users.id AND e.action = 'set-own-language')
+     RETURNING id`,
     { workerId, ...change },
   );
   for (const { id } of carried)

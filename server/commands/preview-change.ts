@@ -9,7 +9,8 @@ import { type Concerned, concernedDays } from "./mark-days-stale";
 
 /** More are not looked at within one request. */
 const MOST_DAYS = 5000;
-const MOST_CHANGES = 200;
+/** Workers' changes, each with its days: more are not listed. */
+const MOST_CHANGES = 500;
 const BATCH = 500;
 
 interface DayNow {
@@ -22,8 +23,18 @@ interface DayNow {
   total: number;
 }
 
-type Line = ChangePreview["changes"][number]["line"];
+type Change = ChangePreview["changes"][number];
+type Line = Change["line"];
 const NONE = "none";
+
+/** What a day comes to, gravest first; then who is judged at the ear before what is judged without protection. */
+const GRAVEST_STATES = ["over", "cant-tell-yet", "not-assessed", "too-little", NONE, "too-much"];
+const GRAVEST_LINES: readonly Line[] = ["at-the-ear", "without-protection", "protector"];
+const rank = (list: readonly string[], value: string) =>
+  list.includes(value) ? list.indexOf(value) : list.length;
+const byGravity = (a: Pick<Change, "line" | "after">, b: Pick<Change, "line" | "after">) =>
+  rank(GRAVEST_STATES, a.after) - rank(GRAVEST_STATES, b.after) ||
+  rank(GRAVEST_LINES, a.line) - rank(GRAVEST_LINES, b.line);
 
 /**
  * Who would change verdict if a change were made: the change is made, the days it touches are evaluated from the inputs
@@ -49,9 +60,10 @@ export async function previewChange(
     values,
   );
   const total = days[0]?.total ?? 0;
-  const changes: ChangePreview["changes"] = [];
+  const changes = new Map<string, Change>();
   const tally = new Map<string, ChangePreview["tally"][number]>();
   let changedDays = 0;
+  let overDays = 0;
   let cantTellDays = 0;
   await execute("SAVEPOINT preview");
   await change();
@@ -71,20 +83,27 @@ export async function previewChange(
       const changed = compared.filter(([, before, next]) => before !== next);
       if (changed.length === 0) continue;
       changedDays += 1;
-      if (changed.some(([, , next]) => next === "cant-tell-yet")) cantTellDays += 1;
+      if (changed.some(([, , next]) => next === "over")) overDays += 1;
+      else if (changed.some(([, , next]) => next === "cant-tell-yet")) cantTellDays += 1;
       for (const [line, before, next] of changed) {
         const after = next ?? NONE;
         const counted = tally.get(`${line} ${after}`);
         if (counted) counted.days += 1;
         else tally.set(`${line} ${after}`, { line, after, days: 1 });
-        if (changes.length < MOST_CHANGES)
-          changes.push({
+        const key = [workerId, line, before, after].join(" ");
+        const change = changes.get(key);
+        // The days come latest first.
+        if (change) Object.assign(change, { days: change.days + 1, firstDate: date });
+        else
+          changes.set(key, {
             workerId,
             workerName,
-            date,
             line,
             before: before ?? NONE,
             after,
+            days: 1,
+            firstDate: date,
+            lastDate: date,
           });
       }
     }
@@ -93,9 +112,13 @@ export async function previewChange(
   return {
     days: total,
     workers: new Set(days.map(({ workerId }) => workerId)).size,
-    tally: [...tally.values()].sort((a, b) => b.days - a.days),
-    changes,
+    tally: [...tally.values()].sort((a, b) => byGravity(a, b) || b.days - a.days),
+    changes: [...changes.values()]
+      .sort((a, b) => byGravity(a, b) || b.days - a.days)
+      .slice(0, MOST_CHANGES),
+    changesCount: changes.size,
     changedDays,
+    overDays,
     cantTellDays,
     tooMany: total - days.length,
   };

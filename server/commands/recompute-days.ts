@@ -166,6 +166,7 @@ export const RESULT_COLUMNS = {
   outside_db: ["outsideDb", "float8"],
   outside_bound: ["outsideBound", "text"],
   at_ear_db: ["atEarDb", "float8"],
+  at_ear_bound: ["atEarBound", "text"],
   at_ear_active_db: ["atEarActiveDb", "float8"],
   at_ear_as_worked_db: ["atEarAsWorkedDb", "float8"],
   uncertainty_db: ["uncertaintyDb", "float8"],
@@ -177,6 +178,7 @@ export const RESULT_COLUMNS = {
   deciding_task_id: ["decidingTaskId", "uuid"],
   has_protector: ["hasProtector", "text"],
   reason: ["reason", "text"],
+  own_target_db: ["ownTargetDb", "float8"],
   criteria: ["criteria", "jsonb"],
 } as const satisfies Record<string, readonly [keyof ReturnType<typeof resultFacts>, string]>;
 

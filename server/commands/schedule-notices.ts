@@ -1,5 +1,5 @@
 import { randomUUID } from "node:crypto";
-import { NOTIFIED_KINDS } from "../../shared/findings/notified";
+import { isNotified } from "../../shared/findings/notified";
 import { addDays } from "../../shared/time/zone";
 import { todayAt } from "../lib/calendar";
 import { execute, row, rows } from "../lib/db";
@@ -48,9 +48,7 @@ export async function scheduleNotices({
   if (earlier.some((state) => unsent.has(state))) await withdrawUnsent(days);
   if (earlier.some((state) => told.has(state)))
     await replaceSent({ organizationId, entryId, notBefore, days });
-  const news = recomputed.opened.filter(
-    ({ kind, date }) => NOTIFIED_KINDS.has(kind) && date >= oldest,
-  );
+  const news = recomputed.opened.filter((finding) => isNotified(finding) && finding.date >= oldest);
   if (news.length === 0) return;
 
   const items: {

@@ -22,6 +22,7 @@ export interface DayCauses {
 export interface OpenedFinding {
   id: string;
   kind: FindingKind;
+  criterion: string;
   workerId: string;
   siteId: string;
   date: string;
@@ -118,6 +119,7 @@ export async function updateFindings(
         opened.push({
           id,
           kind,
+          criterion,
           workerId: day.workerId,
           siteId: day.siteId,
           date: day.date,

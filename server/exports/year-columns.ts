@@ -149,6 +149,14 @@ export const YEAR_COLUMNS: readonly YearColumn[] = [
     meaning: /* i18n */ "The day at the ear, wearing time counted, active part off",
   },
   {
+    name: "at_ear_bound",
+    sql: "r.at_ear_bound",
+    type: "code",
+    unit: "",
+    meaning:
+      /* i18n */ "exact, or whether the level at the ear is only an upper or a lower bound of the true one; empty in results that did not keep it",
+  },
+  {
     name: "at_ear_on_db",
     sql: "r.at_ear_active_db",
     type: "number",

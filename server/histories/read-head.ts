@@ -101,7 +101,7 @@ export async function readHead(
   const delimiter = delimiterOf(filled.slice(Math.min(12, Math.floor(filled.length / 2))));
   const lines = cut(texts.map((line) => splitLine(line, delimiter)));
   return headOf(
-    { format: "text", encoding, sheets: [], lines },
+    { format: "text", encoding, sheets: [], lines, delimiter },
     recognise(lines, delimiter, null),
     remembered,
   );

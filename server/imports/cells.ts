@@ -27,6 +27,11 @@ export class Cells {
     return null;
   }
 
+  /** Nothing was refused in any of these lines. */
+  areGood(lines: readonly CsvLine[]): boolean {
+    return !this.issues.some(({ line }) => lines.some((one) => one.line === line));
+  }
+
   text({ cells }: CsvLine, field: string): string | null {
     return cells.get(field)?.normalize("NFC") || null;
   }

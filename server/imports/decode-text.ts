@@ -1,6 +1,21 @@
 import { AppError } from "../lib/errors";
 
-const notCsv = (detail: string) => new AppError("not-csv", 415, { detail });
+/** What a file is that is no CSV, as far as its first bytes tell. */
+type Found = "empty" | "spreadsheet" | "pdf" | "picture" | "binary" | "other-encoding";
+
+const notCsv = (found: Found) => new AppError("not-csv", 415, { found });
+
+const SIGNATURES: readonly (readonly [readonly number[], Found])[] = [
+  [[0x50, 0x4b, 0x03, 0x04], "spreadsheet"],
+  [[0xd0, 0xcf, 0x11, 0xe0], "spreadsheet"],
+  [[0x25, 0x50, 0x44, 0x46], "pdf"],
+  [[0x89, 0x50, 0x4e, 0x47], "picture"],
+  [[0xff, 0xd8, 0xff], "picture"],
+  [[0x47, 0x49, 0x46, 0x38], "picture"],
+];
+
+const signedAs = (bytes: Buffer): Found | undefined =>
+  SIGNATURES.find(([signature]) => signature.every((byte, at) => bytes[at] === byte))?.[1];
 
 /** Share of the file that tells its encoding, where no byte order mark does. */
 const SAMPLE_BYTES = 4096;
@@ -26,12 +41,14 @@ function encodingOf(bytes: Buffer): "utf-8" | "utf-16le" | "utf-16be" {
  * @throws AppError not-csv, for what is no text: nothing is guessed of older code pages.
  */
 export function decodeText(bytes: Buffer): string {
+  const signed = signedAs(bytes);
+  if (signed) throw notCsv(signed);
   const encoding = encodingOf(bytes);
   let text: string;
   try {
     text = new TextDecoder(encoding, { fatal: true }).decode(bytes);
   } catch {
-    throw notCsv(encoding);
+    throw notCsv("other-encoding");
   }
   // biome-ignore lint/suspicious/noControlCharactersInRegex: these are what tells a binary file
   if (/[\u0000-\u0008\u000e-\u001f]/.test(text)) throw notCsv("binary");

@@ -110,6 +110,7 @@ export async function draftPastResults(
             : ("changed" as const),
     };
   });
+  const good = drafts.filter(({ line }) => cells.areGood([line]));
   if (reason === null) {
     for (const { line, state } of drafts)
       if (state === "changed") cells.refuse(line, "", "reason-missing");
@@ -119,7 +120,7 @@ export async function draftPastResults(
     days.map(({ workerId }) => workerId),
   );
   const count = (state: (typeof drafts)[number]["state"]) =>
-    drafts.filter((one) => one.state === state).length;
+    good.filter((one) => one.state === state).length;
   return {
     fresh: count("fresh"),
     changed: count("changed"),

@@ -87,7 +87,7 @@ export async function draftReadings(actor: Actor, site: Site, file: CsvFile): Pr
   const recorded = await recordedRuns(workerIds);
   const today = todayAt(site.timeZone);
 
-  const fresh: { run: RunInput; first: CsvLine }[] = [];
+  const fresh: { run: RunInput; first: CsvLine; lines: readonly CsvLine[] }[] = [];
   const days: { workerId: string; date: string }[] = [];
   let unchanged = 0;
   for (const lines of groups) {
@@ -112,7 +112,7 @@ export async function draftReadings(actor: Actor, site: Site, file: CsvFile): Pr
     }
     days.push({ workerId: worker.id, date: facts.date });
     const same = recorded.get(keyOfRun(parsed.data));
-    if (same === undefined) fresh.push({ run: parsed.data, first });
+    if (same === undefined) fresh.push({ run: parsed.data, first, lines });
     else if (same === factsOf(parsed.data)) unchanged += 1;
     // A recorded run is corrected on its own page, with its reason and its readings beside the earlier ones.
     else cells.refuse(first, "instrument_serial", "reading-recorded-already");
@@ -134,7 +134,7 @@ export async function draftReadings(actor: Actor, site: Site, file: CsvFile): Pr
   });
   const runs = fresh.map(({ run }) => run);
   return {
-    fresh: runs.length,
+    fresh: fresh.filter(({ lines }) => cells.areGood(lines)).length,
     changed: 0,
     unchanged,
     days,

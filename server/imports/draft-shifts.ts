@@ -131,13 +131,14 @@ export async function draftShifts(
     };
   });
   refuseOverlaps(cells, accepted, nearby);
+  const good = accepted.filter(({ lines }) => cells.areGood(lines));
   if (reason === null) {
     for (const { lines, state } of accepted)
       if (state === "changed") cells.refuse(lines[0]!, "", "reason-missing");
   }
 
   const count = (state: (typeof accepted)[number]["state"]) =>
-    accepted.filter((one) => one.state === state).length;
+    good.filter((one) => one.state === state).length;
   return {
     fresh: count("fresh"),
     changed: count("changed"),

@@ -33,7 +33,8 @@ export const RULES_UNTIL = `(SELECT coalesce(
     WHERE now.governing_rule_set <> rested.key)`;
 
 const SELECT_FINDINGS = `SELECT f.id, f.kind, f.state, f.criterion, f.use_key AS "useKey", f.facts, f.first_date::text AS "firstDate", f.last_date::text AS "lastDate",
-    f.days_count AS "daysCount", f.due_on::text AS "dueOn", ${RULES_UNTIL} AS "rulesUntil", f.site_id AS "siteId", f.revision, w.id AS "workerId", w.name AS "workerName",
+    f.days_count AS "daysCount",
+    CASE WHEN f.job_id IS NULL THEN 1 ELSE (SELECT count(DISTINCT e.worker_id)::int FROM finding_evidence e WHERE e.finding_id = f.id) END AS "workersCount", f.due_on::text AS "dueOn", ${RULES_UNTIL} AS "rulesUntil", f.site_id AS "siteId", f.revision, w.id AS "workerId", w.name AS "workerName",
     w.employee_number AS "employeeNumber", coalesce(j.name, i.name) AS "subjectName",
     (SELECT c.name FROM crew_memberships m JOIN crews c ON c.id = m.crew_id WHERE m.worker_id = f.worker_id AND m.valid @> f.last_date LIMIT 1) AS "crewName",
     o.name AS "ownerName",
@@ -113,8 +114,10 @@ export async function findingView(
      FROM finding_steps s LEFT JOIN users u ON u.id = s.author_id WHERE s.finding_id = :id ORDER BY s.created_at, s.id`,
     { id: finding.id },
   );
-  const evidence = await rows<DayFiguresRow>(
-    `SELECT ${DAY_FIGURES_COLUMNS("r")} FROM finding_evidence e JOIN day_results r ON r.id = e.result_id WHERE e.finding_id = :id ORDER BY e.date DESC LIMIT 60`,
+  const evidence = await rows<DayFiguresRow & { ofWorkerId: string; ofWorkerName: string }>(
+    `SELECT ${DAY_FIGURES_COLUMNS("r")}, w.id AS "ofWorkerId", w.name AS "ofWorkerName"
+     FROM finding_evidence e JOIN day_results r ON r.id = e.result_id JOIN workers w ON w.id = e.worker_id
+     WHERE e.finding_id = :id ORDER BY e.date DESC, w.name, w.id LIMIT 60`,
     { id: finding.id },
   );
   const told = await rows<{
@@ -134,7 +137,10 @@ export async function findingView(
     closedOn: finding.closedOn,
     previousId: finding.previousId,
     steps: steps.map(({ at, ...step }) => ({ ...step, at: at.toISOString() })),
-    evidence: evidence.map(presentDayFigures),
+    evidence: evidence.map(({ ofWorkerId, ofWorkerName, ...figures }) => ({
+      ...presentDayFigures(figures),
+      worker: { id: ofWorkerId, name: ofWorkerName },
+    })),
     told: told.map(({ at, ...one }) => ({ ...one, at: at?.toISOString() ?? null })),
   };
 }

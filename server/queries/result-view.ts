@@ -16,15 +16,16 @@ interface Found extends DayFiguresRow {
   workerId: string;
   workerName: string;
   employeeNumber: string;
+  timeZone: string;
   computedAt: Date;
   isCurrent: boolean;
   methodVersion: number;
   refs: DayRefs;
 }
 
-const SELECT_RESULT = `SELECT ${DAY_FIGURES_COLUMNS("r")}, r.worker_id AS "workerId", w.name AS "workerName", w.employee_number AS "employeeNumber",
+const SELECT_RESULT = `SELECT ${DAY_FIGURES_COLUMNS("r")}, r.worker_id AS "workerId", w.name AS "workerName", w.employee_number AS "employeeNumber", s.time_zone AS "timeZone",
     r.computed_at AS "computedAt", coalesce(d.current_result_id = r.id, FALSE) AS "isCurrent", r.method_version AS "methodVersion", r.refs
-  FROM day_results r JOIN workers w ON w.id = r.worker_id LEFT JOIN days d ON d.worker_id = r.worker_id AND d.date = r.date`;
+  FROM day_results r JOIN workers w ON w.id = r.worker_id JOIN sites s ON s.id = r.site_id LEFT JOIN days d ON d.worker_id = r.worker_id AND d.date = r.date`;
 
 export async function resultOfDay(actor: Actor, workerId: string, date: string) {
   return view(
@@ -98,6 +99,7 @@ async function view(found: Found | null): Promise<z.input<typeof ResultView>> {
     id: found.resultId,
     worker: { id: workerId, name: found.workerName, employeeNumber: found.employeeNumber },
     date,
+    timeZone: found.timeZone,
     shifts,
     figures: presentDayFigures(found),
     origin,

@@ -6,6 +6,7 @@ import { insertProtectorRevision } from "../commands/add-protector-revision";
 import { insertSettings } from "../commands/add-site-settings";
 import { insertTaskLevel } from "../commands/add-task-level";
 import { checkSettings } from "../commands/check-site";
+import { checkLevel } from "../commands/check-task";
 import { previewChange } from "../commands/preview-change";
 import { row } from "../lib/db";
 import { endpoint } from "../lib/endpoint";
@@ -33,6 +34,7 @@ export function definePreviewRoutes(): void {
     async ({ actor, params, body }) => {
       const task = await findVisible(Task, programmePolicy, params.id, actor);
       authorize(programmePolicy, actor, "change", task);
+      checkLevel(body);
       return previewChange(actor, { taskId: task.id, fromDate: body.effectiveFrom }, () =>
         insertTaskLevel(actor, task, { ...body, reason: PREVIEW }),
       );

@@ -69,6 +69,9 @@ export function evaluateDay(
   const law = lawOf(outside);
   const tasksDb = outsideSum.hasReading ? exactLevelDb(outsideSum.tasks, outside) : null;
   const uncertainty = day.uncertainty();
+  const atEarBound = atEar.isWorn
+    ? boundAtEar(atEar, protector.word, criteria, governing)
+    : outsideResult.bound;
   return {
     methodVersion: METHOD_VERSION,
     date: input.date,
@@ -80,9 +83,10 @@ export function evaluateDay(
     keptReasons: keptReasons(input),
     outsideDb: outsideResult.levelDb,
     outsideBound: outsideResult.bound,
-    atEarDb: atEar.isWorn ? shownLevelDb(atEar.off, law, atEar) : outsideResult.levelDb,
-    atEarActiveDb: atEar.on && shownLevelDb(atEar.on, law, atEar),
-    atEarAsWorkedDb: atEar.asWorked && shownLevelDb(atEar.asWorked, law, atEar),
+    atEarDb: atEar.isWorn ? shownLevelDb(atEar.off, law, atEar, atEarBound) : outsideResult.levelDb,
+    atEarBound,
+    atEarActiveDb: atEar.on && shownLevelDb(atEar.on, law, atEar, atEarBound),
+    atEarAsWorkedDb: atEar.asWorked && shownLevelDb(atEar.asWorked, law, atEar, atEarBound),
     uncertaintyDb: uncertainty.budget?.expandedDb ?? null,
     uncertaintyReason: uncertainty.reason,
     criteria,
@@ -296,15 +300,43 @@ function exactLevelDb(sum: Sum, criterion: Criterion): number | null {
 }
 
 /**
- * A level at the ear to show, dB: if worn all the time where the wearing is not known, else the most it can be. Null
- * where it is not known what a protector takes off.
+ * The end of what is possible at the ear that is shown: the least where it proves that it is too much, where the wearing
+ * is not known (it is that of wearing it all the time) or where nothing bounds the most; else the most.
  */
-function shownLevelDb(sum: Sum, law: ExchangeLaw, atEar: DayAtEar): number | null {
+function boundAtEar(
+  atEar: DayAtEar,
+  word: ProtectorWord | null,
+  criteria: readonly CriterionResult[],
+  ruleSet: RuleSetVersion,
+): DayEvaluation["atEarBound"] {
+  const { least, most } = atEar.off;
+  if (least === most) return "exact";
+  const isOver =
+    (ruleSet.protection.adequacy === "appendix-b" && word === "too-little") ||
+    ruleSet.criteria.some(
+      ({ id, judged, quantity }) =>
+        judged === "at-the-ear" &&
+        quantity !== "peak" &&
+        quantity !== "slow-maximum" &&
+        criteria.some(
+          ({ ruleSetKey, criterionId, verdict }) =>
+            ruleSetKey === ruleSet.key && criterionId === id && verdict === "over",
+        ),
+    );
+  return isOver || atEar.isWearingUnknown || most === Number.POSITIVE_INFINITY ? "lower" : "upper";
+}
+
+/** A level at the ear to show, dB. Null where it is not known what a protector takes off. */
+function shownLevelDb(
+  sum: Sum,
+  law: ExchangeLaw,
+  atEar: DayAtEar,
+  bound: DayEvaluation["atEarBound"],
+): number | null {
   if (sum.missing !== null) return null;
   if (atEar.tasks.some(({ isWorn, governingMethod }) => isWorn && governingMethod === null))
     return null;
-  const isLeast = atEar.isWearingUnknown || sum.most === Number.POSITIVE_INFINITY;
-  const weight = isLeast ? sum.least : sum.most;
+  const weight = bound === "lower" ? sum.least : sum.most;
   return weight > 0 ? levelFactor(law) * Math.log10(weight / law.referenceMin) : null;
 }
 
@@ -344,7 +376,11 @@ function judgeByTask(worn: readonly TaskAtEar[], atEar: DayAtEar): ProtectorJudg
     };
   });
   const deciding = decidingTask(judged);
-  const open = worn.find(({ governingMethod }) => governingMethod === null);
+  const open = worn.find(
+    ({ governingMethod, word, reason }) =>
+      governingMethod === null ||
+      (word === null && (reason === "only-upper-bound" || reason === "only-lower-bound")),
+  );
   // An unknown task could still be worse than any word but the worst.
   if (open && deciding?.word !== "too-little") {
     return { word: null, decidingTaskId: null, reason: open.reason };

@@ -1,3 +1,4 @@
+import { isSameLaw, lawOf } from "./exchange-law";
 import type { Criterion, RuleSetVersion } from "./types";
 
 /**
@@ -14,4 +15,12 @@ export function outsideCriterion(ruleSet: RuleSetVersion): Criterion {
   }
   if (!limit) throw new RangeError(`Rule set ${ruleSet.key} has neither action value nor limit`);
   return limit;
+}
+
+/** Both criteria are about one and the same number of a day: one figure may stand for both. */
+export function isSameFigure(a: Criterion, b: Criterion): boolean {
+  if (a.quantity !== b.quantity || a.judged !== b.judged) return false;
+  return a.quantity === "slow-maximum" || a.quantity === "peak"
+    ? a.peakWeighting === b.peakWeighting
+    : isSameLaw(lawOf(a), lawOf(b));
 }

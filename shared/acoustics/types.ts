@@ -379,6 +379,8 @@ export interface DayEvaluation {
   readonly outsideDb: number | null;
   readonly outsideBound: "exact" | "upper" | "lower";
   readonly atEarDb: number | null;
+  /** On which side of the true one the level at the ear stands, where it is not exact. */
+  readonly atEarBound: "exact" | "upper" | "lower";
   /** Whole day at the ear with the active part on; null without one. */
   readonly atEarActiveDb: number | null;
   /** The day as worked: active part on while the battery lasts. */

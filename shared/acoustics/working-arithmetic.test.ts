@@ -176,7 +176,11 @@ const rowsOf = ({ columns, rows }: WorkingTable) =>
       columns.map(({ id }, index) => [id, row.cells[index] ?? null]),
     ) as Cells,
   }));
-const read = (cells: Cells, id: string): number | null => (cells[id] ? numberOf(cells[id]) : null);
+const read = (cells: Cells, id: string): number | null => {
+  const cell = cells[id];
+  // In words where nothing counts.
+  return cell && cell.kind !== "text" ? numberOf(cell) : null;
+};
 
 function checkSum(table: WorkingTable, id: string): void {
   const rows = rowsOf(table);

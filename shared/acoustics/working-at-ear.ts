@@ -10,7 +10,14 @@ import {
   steadyWeight,
 } from "./protection/at-ear";
 import { wornShareLevelDb } from "./protection/wearing-time";
-import type { AttenuationMethod, DayInput, ShiftInput, TaskAtEar, TimedTask } from "./types";
+import type {
+  AttenuationMethod,
+  DayEvaluation,
+  DayInput,
+  ShiftInput,
+  TaskAtEar,
+  TimedTask,
+} from "./types";
 import type { Bound } from "./working-parts";
 
 /** One task, or quiet time, of the day as it counts at the ear. */
@@ -55,12 +62,13 @@ export class DayAtEarRows {
     day: DayInput,
     private readonly outsideLaw: ExchangeLaw,
     atEar: DayAtEar,
+    bound: DayEvaluation["atEarBound"],
   ) {
     this.law = { ...outsideLaw, table: null, thresholdDb: null };
     this.factor = levelFactor(this.law);
     const { least, most } = atEar.off;
-    const isLeast = atEar.isWearingUnknown || most === Number.POSITIVE_INFINITY;
-    this.bound = least === most ? null : isLeast ? "lower" : "upper";
+    this.bound = least === most || bound === "exact" ? null : bound;
+    const isLeast = this.bound === "lower";
     const rows: TimeAtEar[] = [];
     const shifts: ShiftAtEar[] = [];
     for (const [shiftIndex, shift] of day.shifts.entries()) {
@@ -89,7 +97,7 @@ export class DayAtEarRows {
       const lawHere = seen.isWorn ? law : bareLaw;
       const weight = scale.isByReading
         ? steadyWeight(task.level.levelDb, lawHere)
-        : (isLeast ? leastAtEar : mostAtEar)(task.level, lawHere);
+        : (isLeast ? leastAtEar : mostAtEar)(task.level, lawHere, this.outsideLaw);
       const bareDb = weight > 0 ? levelOfWeight(weight, law) : null;
       const takenOffDb =
         seen.isWorn && seen.wornDb !== null ? task.level.levelDb - seen.wornDb : null;

@@ -127,9 +127,9 @@ export interface WorkingStep {
   readonly records: readonly WorkingRecord[];
 }
 
-/** One of the lines at the head: the ear, the protector, the noise without it. */
+/** One of the lines at the head: the ear, the protector, the noise without it, and what has a figure of its own. */
 export interface WorkingLine {
-  readonly id: "at-the-ear" | "protector" | "without-protection";
+  readonly id: "at-the-ear" | "protector" | "without-protection" | `criterion-${string}`;
   readonly title: WorkingText;
   readonly level: WorkingValue | null;
   readonly uncertainty: WorkingValue | null;

@@ -2,7 +2,7 @@ import { evaluateDay } from "./day";
 import { governingReading, likenessFactor, sumDay } from "./day-sum";
 import { dayUncertainty } from "./day-uncertainty";
 import { type ExchangeLaw, isSameLaw, lawOf, levelFactor } from "./exchange-law";
-import { outsideCriterion } from "./outside-criterion";
+import { isSameFigure, outsideCriterion } from "./outside-criterion";
 import { evaluateAtEar } from "./protection/at-ear";
 import type {
   AttenuationMethod,
@@ -137,6 +137,7 @@ class Builder {
       input,
       this.law,
       evaluateAtEar(input, governing, this.law, sum),
+      evaluation.atEarBound,
     );
   }
 
@@ -171,7 +172,8 @@ class Builder {
   lines(): WorkingLine[] {
     const { evaluation } = this;
     const atEarResult = this.resultsJudged("at-the-ear").find(({ levelDb }) => levelDb !== null);
-    const outsideResult = worstOf(this.resultsJudged("without-protection"));
+    const [own, others] = this.outsideResults();
+    const outsideResult = worstOf(own);
     const deciding = evaluation.tasks.find(
       ({ timedTaskId }) => timedTaskId === evaluation.decidingTaskId,
     );
@@ -209,7 +211,48 @@ class Builder {
       outcome: outsideResult ? verdict(outsideResult) : null,
       remark: outsideResult ? this.remarkOn(outsideResult) : null,
     });
+    for (const result of others) {
+      const criterion = criterionOf(this.governing, result);
+      lines.push({
+        id: `criterion-${criterion.id}`,
+        title: text(criterion.label),
+        level: boundedLevel(result.levelDb, result.bound === "exact" ? null : result.bound),
+        uncertainty: null,
+        outcome: verdict(result),
+        remark: this.remarkOn(result),
+      });
+    }
     return lines;
+  }
+
+  /**
+   * Results without protection that share the figure of the head, and, each with a figure of its own, the others that
+   * are over or open: of several on one quantity the highest exceeded.
+   */
+  private outsideResults(): [own: CriterionResult[], others: CriterionResult[]] {
+    const own: CriterionResult[] = [];
+    const others: CriterionResult[] = [];
+    for (const result of this.resultsJudged("without-protection")) {
+      const criterion = criterionOf(this.governing, result);
+      if (isSameFigure(criterion, this.outside)) own.push(result);
+      else if (
+        (result.verdict === "over" || result.verdict === "cant-tell-yet") &&
+        result.levelDb !== null
+      )
+        others.push(result);
+    }
+    const isExceededHigher = (result: CriterionResult) => {
+      const criterion = criterionOf(this.governing, result);
+      return others.some((other) => {
+        const higher = criterionOf(this.governing, other);
+        return (
+          other.verdict === "over" &&
+          isSameFigure(criterion, higher) &&
+          higher.value > criterion.value
+        );
+      });
+    };
+    return [own, others.filter((result) => !isExceededHigher(result))];
   }
 
   /** The governing rule's criteria that add noise up, one of each law and bound, the one that the head shows first. */
@@ -243,9 +286,8 @@ class Builder {
   }
 
   private atEarBound(): Bound | null {
-    const { outsideBound } = this.evaluation;
-    if (this.isWorn) return this.dayAtEar.bound;
-    return outsideBound === "exact" ? null : outsideBound;
+    const { atEarBound } = this.evaluation;
+    return atEarBound === "exact" ? null : atEarBound;
   }
 
   private noiseStep(): Draft {
@@ -597,7 +639,7 @@ class Builder {
           ? word(task.word)
           : ({ kind: "text", text: text(/*i18n*/ "not worn") } as const),
         ...(hasActive ? [level(task.wornActiveDb), word(task.wordActive)] : []),
-        level(task.inTaskDb),
+        this.countsNothing(task.timedTaskId) ? words(COUNTS_NOTHING) : level(task.inTaskDb),
       ]),
       isEmphasized: task.timedTaskId === this.evaluation.decidingTaskId,
     }));
@@ -694,12 +736,24 @@ class Builder {
     const { adequacy, targetDb } = this.governing.protection;
     if (targetDb === null) return [];
     const actionDb = Math.min(targetDb, this.input.personalTargetDb ?? targetDb);
+    // Why it is set is for officers alone.
+    const own =
+      actionDb < targetDb
+        ? [
+            text(
+              /*i18n*/ "A stricter target is set for this worker: {target}, where the rule asks for {value}.",
+              { target: level(actionDb), value: level(targetDb) },
+            ),
+          ]
+        : [];
     if (adequacy === "appendix-b") {
       return [
         text(
           /*i18n*/ "Enough where the shift's TWA under the protector does not exceed {target}.",
           { target: level(actionDb) },
         ),
+        ...own,
+        ...this.boundNotes(actionDb),
       ];
     }
     if (adequacy !== "en-458") return [];
@@ -713,6 +767,28 @@ class Builder {
           fifteen: level(actionDb - 15),
         },
       ),
+      ...own,
+    ];
+  }
+
+  /** What a bound of the level at the ear proves of the protector. */
+  private boundNotes(targetDb: number): WorkingText[] {
+    const { atEarBound, protectorReason } = this.evaluation;
+    if (atEarBound === "exact") return [];
+    const isOpen = protectorReason === "only-upper-bound" || protectorReason === "only-lower-bound";
+    return [
+      text(
+        /*i18n*/ "The level is only bounded: enough is proved by an upper bound within {target}, too little by a lower bound past it.",
+        { target: level(targetDb) },
+      ),
+      ...(isOpen && this.outside.thresholdDb !== null
+        ? [
+            text(
+              /*i18n*/ "Between them it can’t be told yet; an average with threshold {value} would settle it.",
+              { value: level(this.outside.thresholdDb) },
+            ),
+          ]
+        : []),
     ];
   }
 
@@ -750,6 +826,10 @@ class Builder {
       );
     }
     return notes;
+  }
+
+  private countsNothing(timedTaskId: string): boolean {
+    return this.dayAtEar.rows.some((one) => one.id === timedTaskId && isNothing(one));
   }
 
   private protectorRecords(): WorkingRecord[] {
@@ -898,7 +978,7 @@ class Builder {
           bare: level(one.bareDb),
           "bare-term": scientific(bareTerm(one)),
           worn: share(100 * one.worn),
-          "in-task": level(one.offDb),
+          "in-task": isNothing(one) ? words(COUNTS_NOTHING) : level(one.offDb),
           term: scientific(day.term(one, one.offDb)),
           "in-task-on": level(one.onDb),
           "term-on": scientific(day.term(one, one.onDb)),
@@ -1168,6 +1248,11 @@ class Builder {
     return name(this.names.get(timedTaskId) ?? timedTaskId);
   }
 }
+
+const COUNTS_NOTHING = text(/*i18n*/ "counts nothing: under the threshold");
+
+/** Bare time of which nothing is in the sum. */
+const isNothing = ({ bareDb, atEar }: TimeAtEar): boolean => bareDb === null && !atEar?.isWorn;
 
 const RESPONSES = {
   slow: /*i18n*/ "slow",

@@ -15,6 +15,15 @@ export function headline(results: readonly Pick<CriterionResult, "verdict">[]): 
   return "not-assessed";
 }
 
+/** A target that is stricter for this worker than the rule's; null where the rule's own holds, or it has none. */
+function ownTargetDb(
+  { personalTargetDb }: DayInput,
+  { protection: { adequacy, targetDb } }: RuleSetVersion,
+): number | null {
+  if (personalTargetDb === null || targetDb === null || adequacy === "not-stated") return null;
+  return personalTargetDb < targetDb ? personalTargetDb : null;
+}
+
 const levelQuantities: ReadonlySet<string | undefined> = new Set(["lex-8h", "dose", "table-dose"]);
 
 export type DaySummary = Omit<DayFigures, "resultId" | "origin"> & {
@@ -44,6 +53,7 @@ export function summarizeDay(
     outsideDb: evaluation.outsideDb,
     outsideBound: evaluation.outsideBound,
     atEarDb: evaluation.atEarDb,
+    atEarBound: evaluation.atEarBound,
     atEarActiveDb: evaluation.atEarActiveDb,
     atEarAsWorkedDb: evaluation.atEarAsWorkedDb,
     uncertaintyDb: evaluation.uncertaintyDb,
@@ -59,16 +69,20 @@ export function summarizeDay(
       atEar.find(({ reason }) => reason)?.reason ??
       outside.find(({ reason }) => reason)?.reason ??
       null,
+    ownTargetDb: ownTargetDb(input, governing),
     ruleSetKey: governing.key,
     ruleSetVersion: governing.version,
-    governingCriteria: own.map(({ criterionId, verdict, isClear, levelDb, dosePct, reason }) => ({
-      criterionId,
-      verdict,
-      isClear,
-      levelDb,
-      dosePct,
-      reason,
-    })),
+    governingCriteria: own.map(
+      ({ criterionId, verdict, isClear, levelDb, dosePct, bound, reason }) => ({
+        criterionId,
+        verdict,
+        isClear,
+        levelDb,
+        dosePct,
+        bound,
+        reason,
+      }),
+    ),
     dosePct: outside.find(({ dosePct }) => dosePct !== null)?.dosePct ?? null,
   };
 }

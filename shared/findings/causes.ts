@@ -80,9 +80,16 @@ export function findCauses(
       valueDb: levelOf(criterion),
       criterionId: criterion.id,
     };
-    if (criterion.kind === "peak" || criterion.kind === "ceiling")
-      add("peak-or-ceiling", { ...facts, what: criterion.kind }, about);
-    else if (criterion.kind === "dual-protection") {
+    if (isMaximum(criterion)) {
+      // What lies above the higher value lies above the lower one too: one thing to act on.
+      if (!own.some((other) => isExceededHigher(criterionOf(other), other, criterion)))
+        add(
+          "peak-or-ceiling",
+          { ...facts, what: maximumWord(criterion), weighting: criterion.peakWeighting },
+          // Passed in one day it is passed in the next: one finding for the group asks to damp it.
+          criterion.kind === "action" ? { ...about, concerns: "job" } : about,
+        );
+    } else if (criterion.kind === "dual-protection") {
       const isSingle = seen.some(
         ({ task, atEar }) =>
           atEar.isWorn && task.protection !== null && task.protection.outer === null,
@@ -173,6 +180,17 @@ export function findCauses(
   return causes;
 }
 
+const isMaximum = ({ quantity }: Criterion): boolean =>
+  quantity === "peak" || quantity === "slow-maximum";
+
+const maximumWord = ({ kind }: Criterion): string => (kind === "action" ? "action-peak" : kind);
+
+const isExceededHigher = (
+  higher: Criterion | undefined,
+  { verdict }: CriterionResult,
+  than: Criterion,
+): boolean => verdict === "over" && higher?.quantity === than.quantity && higher.value > than.value;
+
 /** Below this nobody sends out a meter for a peak. Common practice, no source. */
 const PEAKS_FROM_DB = 80;
 
@@ -182,8 +200,11 @@ function missingCriteria(evaluation: DayEvaluation, governing: RuleSetVersion): 
   for (const id of evaluation.missingReadings) {
     const criterion = governing.criteria.find((one) => one.id === id);
     if (!criterion) continue;
-    const isPeak = criterion.quantity === "peak" || criterion.quantity === "slow-maximum";
-    if (isPeak && (evaluation.outsideDb === null || evaluation.outsideDb < PEAKS_FROM_DB)) continue;
+    if (
+      isMaximum(criterion) &&
+      (evaluation.outsideDb === null || evaluation.outsideDb < PEAKS_FROM_DB)
+    )
+      continue;
     if (!byQuantity.has(criterion.quantity)) byQuantity.set(criterion.quantity, criterion);
   }
   return [...byQuantity.values()];
@@ -196,7 +217,7 @@ function isProtectionOwed(own: readonly CriterionResult[], governing: RuleSetVer
     const criterion = governing.criteria.find(({ id }) => id === result.criterionId);
     if (!criterion || result.verdict !== "over" || criterion.judged !== "without-protection")
       return false;
-    if (criterion.quantity === "peak" || criterion.quantity === "slow-maximum") return false;
+    if (isMaximum(criterion)) return false;
     if (criterion.kind === "limit") return true;
     return criterion.kind === "action" && (target === null || levelOf(criterion) >= target);
   });

@@ -195,9 +195,16 @@ export function noticedSentence(
         level: formatLevel(levelDb, locale),
         limit: valueDb === null ? "–" : formatLimit(valueDb, locale),
       };
-      return textOf(facts, "what") === "ceiling"
-        ? i18n.t("Maximum {level} dB, ceiling {limit}", values)
-        : i18n.t("Peak {level} dB, limit {limit}", values);
+      if (textOf(facts, "what") === "ceiling")
+        return i18n.t("Maximum {level} dB, ceiling {limit}", values);
+      const weighting = textOf(facts, "weighting");
+      if (textOf(facts, "what") === "action-peak")
+        return weighting === null
+          ? i18n.t("Peak {level} dB, action value {limit}", values)
+          : i18n.t("Peak {level} dB({weighting}), action value {limit}", { ...values, weighting });
+      return weighting === null
+        ? i18n.t("Peak {level} dB, limit {limit}", values)
+        : i18n.t("Peak {level} dB({weighting}), limit {limit}", { ...values, weighting });
     }
     case "reading-gap":
       return i18n.t("The reading is {gap} dB from the tasks’ {level}", {

@@ -81,6 +81,11 @@ function peakSentence(i18n: I18n, locale: Locale, facts: FindingFacts): string {
     return i18n.t("There was a very loud bang or noise. Tell your supervisor where it comes from.");
   const level = formatWholeLevel(levelDb, locale);
   const limit = formatLimit(valueDb, locale);
+  if (textOf(facts, "what") === "action-peak")
+    return i18n.t(
+      "There was a bang of about {level} decibels. Keep your protector on wherever there are such bangs.",
+      { level },
+    );
   const isCeiling = textOf(facts, "what") === "ceiling";
   if (level === limit)
     return isCeiling

@@ -9,14 +9,15 @@ const BOUND_MARK: Readonly<Record<LevelBound, string>> = {
   lower: "\u2265",
 };
 
-/** A level to 0.1 dB, without its unit: "86.7", "≥84.1", "–" where there is none. */
+/** A level to 0.1 dB (with more `digits` in a working's equations), without its unit: "86.7", "≥84.1", "–" where there is none. */
 export function formatLevel(
   levelDb: number | null,
   locale: Locale,
   bound: LevelBound = "exact",
+  digits = 1,
 ): string {
   if (levelDb === null || !Number.isFinite(levelDb)) return NO_FIGURE;
-  return `${BOUND_MARK[bound]}${formatNumber(levelDb, 1, locale)}`;
+  return `${BOUND_MARK[bound]}${formatNumber(levelDb, digits, locale)}`;
 }
 
 export function formatLevelWithUnit(levelDb: number | null, locale: Locale): string {

@@ -4,3 +4,8 @@ import type { Locale } from "../i18n/index";
 export function withinSentence(text: string, locale: Locale | string): string {
   return locale === "en" ? text.charAt(0).toLocaleLowerCase("en") + text.slice(1) : text;
 }
+
+/** The same text at the start of a sentence. */
+export function startsSentence(text: string): string {
+  return text.charAt(0).toLocaleUpperCase() + text.slice(1);
+}

@@ -88,7 +88,7 @@ export function codeText(i18n: I18n, code: string, params: ProblemParams): strin
     case "too-large":
       return i18n.t("This is too large to take.");
     case "not-csv":
-      return i18n.t("This file is not a CSV in UTF-8.");
+      return notCsvText(i18n, params.found);
     case "database-down":
       return i18n.t("The database can’t be reached. Nothing was saved; what you typed is kept.");
     case "mail-down":
@@ -101,5 +101,22 @@ export function codeText(i18n: I18n, code: string, params: ProblemParams): strin
       return i18n.t("The server made a mistake. Nothing was saved; what you typed is kept.");
     default:
       return null;
+  }
+}
+
+function notCsvText(i18n: I18n, found: string | number | undefined): string {
+  switch (found) {
+    case "empty":
+      return i18n.t("The file is empty.");
+    case "spreadsheet":
+      return i18n.t("This is a spreadsheet or an archive. Save the sheet as CSV first.");
+    case "pdf":
+      return i18n.t("This is a PDF. A CSV is needed.");
+    case "picture":
+      return i18n.t("This is a picture. A CSV is needed.");
+    case "other-encoding":
+      return i18n.t("Its letters are neither in UTF-8 nor in UTF-16. Save it as CSV in UTF-8.");
+    default:
+      return i18n.t("This is no text, so no CSV either. Save the sheet as CSV in UTF-8.");
   }
 }

@@ -1,4 +1,6 @@
 import type { I18n } from "@lingui/core";
+import { formatLevel, formatLevelChange } from "../format/level";
+import { isLocale } from "../i18n/index";
 
 export interface FieldIssue {
   readonly code: string;
@@ -37,6 +39,14 @@ function formatText(i18n: I18n, format: unknown): string {
     default:
       return i18n.t("This is not written as it should be.");
   }
+}
+
+function figuresOf(i18n: I18n, { foundDb, offDb }: FieldIssue["params"]) {
+  const locale = isLocale(i18n.locale) ? i18n.locale : "en";
+  return {
+    found: formatLevel(Number(foundDb), locale),
+    difference: formatLevelChange(Number(offDb), locale),
+  };
 }
 
 /**
@@ -78,6 +88,8 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("Another person has this mail address.");
     case "employee-number-taken":
       return i18n.t("Another worker has this number.");
+    case "employee-number-signs":
+      return i18n.t("Only letters, digits, spaces and - / . _ can stand in an employee number.");
     case "name-taken":
       return i18n.t("This name is taken.");
     case "serial-number-taken":
@@ -124,6 +136,16 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("Delay and gain belong together: both, or none.");
     case "reason-needed":
       return i18n.t("A reason is needed: what is there already changes.");
+    case "level-off-bands":
+      return i18n.t(
+        "The bands add up to {found} dB(A), {difference} dB from the level. Mend one of them, or say that the level is right.",
+        figuresOf(i18n, params),
+      );
+    case "level-off-samples":
+      return i18n.t(
+        "The samples have an energy mean of {found} dB(A), {difference} dB from the level. Mend one of them, or say that the level is right.",
+        figuresOf(i18n, params),
+      );
     case "kind-fixed":
       return i18n.t("Somebody has worn it: the kind stays. Add another protector instead.");
     case "date-too-early":

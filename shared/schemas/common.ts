@@ -10,6 +10,21 @@ export type Language = z.infer<typeof Language>;
 /** A noise level that a person may enter, dB. */
 export const LevelDb = z.number().min(20).max(160);
 export const Reason = z.string().trim().min(3).max(2000);
+/** Letters of any script with their marks, digits, spaces and - / . _ */
+const EMPLOYEE_NUMBER = /^[\p{L}\p{M}\p{Nd} \-/._]+$/u;
+export const EmployeeNumber = z
+  .string()
+  .trim()
+  .min(1)
+  .max(40)
+  .check((context) => {
+    if (context.value !== "" && !EMPLOYEE_NUMBER.test(context.value))
+      context.issues.push({
+        code: "custom",
+        input: context.value,
+        params: { code: "employee-number-signs" },
+      });
+  });
 export const Name = (longest: number) => z.string().trim().min(1).max(longest);
 
 export const PageQuery = z.object({

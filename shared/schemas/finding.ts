@@ -31,6 +31,7 @@ export const DayFigures = z.object({
   outsideDb: z.number().nullable(),
   outsideBound: z.enum(["exact", "upper", "lower"]),
   atEarDb: z.number().nullable(),
+  atEarBound: z.enum(["exact", "upper", "lower"]),
   atEarActiveDb: z.number().nullable(),
   atEarAsWorkedDb: z.number().nullable(),
   uncertaintyDb: z.number().nullable(),
@@ -43,6 +44,8 @@ export const DayFigures = z.object({
   decidingTaskName: z.string().nullable(),
   hasProtector: z.enum(["yes", "no", "unknown"]),
   reason: z.string().nullable(),
+  /** The worker's own target where it is stricter than the rule's, dB; why is on another page. */
+  ownTargetDb: z.number().nullable(),
   ruleSetKey: z.string(),
   ruleSetVersion: z.number(),
   /** Every criterion of the governing rule set, from `criteria->'governing'`. */
@@ -53,6 +56,7 @@ export const DayFigures = z.object({
       isClear: z.boolean(),
       levelDb: z.number().nullable(),
       dosePct: z.number().nullable(),
+      bound: z.enum(["exact", "upper", "lower"]),
       reason: z.string().nullable(),
     }),
   ),
@@ -69,7 +73,10 @@ export const FindingRow = z.object({
   facts: z.record(z.string(), z.unknown()),
   firstDate: IsoDate,
   lastDate: IsoDate,
+  /** Days on which it showed; of a group the days of each worker. */
   daysCount: z.number(),
+  /** Whose days they are: 1 unless it is a group's. */
+  workersCount: z.number(),
   dueOn: IsoDate.nullable(),
   /** It rests on rules that no longer govern its site: the day from which others do. Null while they still do. */
   rulesUntil: IsoDate.nullable(),
@@ -108,7 +115,7 @@ export const FindingView = FindingRow.extend({
   closedOn: IsoDate.nullable(),
   previousId: z.uuid().nullable(),
   steps: z.array(FindingStep),
-  evidence: z.array(DayFigures),
+  evidence: z.array(DayFigures.extend({ worker: z.object({ id: z.uuid(), name: z.string() }) })),
   told: z.array(
     z.object({
       noticeId: z.uuid(),

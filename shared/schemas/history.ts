@@ -14,12 +14,14 @@ export const HistoryChannel = z.enum([
 ]);
 export type HistoryChannel = z.infer<typeof HistoryChannel>;
 
+const Delimiter = z.enum([",", ";", "\t", "|", " "]);
+
 /** How an instrument's export is to be read; kept per instrument. Columns are counted from 0. */
 export const HistoryMapping = z
   .object({
     /** Worksheet of a workbook; null: the first. */
     sheet: z.string().max(120).nullable().default(null),
-    delimiter: z.enum([",", ";", "\t", "|", " "]).default(","),
+    delimiter: Delimiter.default(","),
     /** Lines before the first values, the head line among them. */
     skipLines: z.number().int().min(0).max(200),
     decimal: z.enum([".", ","]),
@@ -70,8 +72,9 @@ export const HistoryHead = z.object({
   format: z.enum(["text", "xlsx"]),
   encoding: z.string().nullable(),
   sheets: z.array(z.string()),
-  /** Cells of the first lines. */
+  /** Cells of the first lines, and what they were told apart by; absent in a workbook. */
   lines: z.array(z.array(z.string())),
+  delimiter: Delimiter.optional(),
   /** A mapping that fits what was seen; null where nothing did. */
   proposed: HistoryMapping.nullable(),
   /** Where the proposal comes from: remembered for the instrument, or recognised in the file. */

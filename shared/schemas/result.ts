@@ -19,6 +19,8 @@ export const ResultView = z.object({
   id: z.uuid(),
   worker: z.object({ id: z.uuid(), name: z.string(), employeeNumber: z.string() }),
   date: IsoDate,
+  /** Of the day's site: times of what was done to it are told in it. */
+  timeZone: z.string(),
   shifts: z.array(
     z.object({
       id: z.uuid(),

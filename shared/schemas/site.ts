@@ -62,9 +62,11 @@ export const AreaList = z.object({ rows: z.array(AreaView) });
 export const ChangePreview = z.object({
   days: z.number(),
   workers: z.number(),
-  /** Days that become Can't tell yet, on either line: where uncertainty begins to count, these are said first. */
+  /** Days that become Over on either line. */
+  overDays: z.number(),
+  /** Days that become Can't tell yet on either line, and Over on neither. */
   cantTellDays: z.number(),
-  /** Days that come to a state, per line, the most first: every day that was looked at is in it. */
+  /** Days that come to a state, per line, the gravest first: every day that was looked at is in it. */
   tally: z.array(
     z.object({
       line: z.enum(["without-protection", "at-the-ear", "protector"]),
@@ -72,17 +74,22 @@ export const ChangePreview = z.object({
       days: z.number(),
     }),
   ),
+  /** The same change of one worker, with its days; the gravest first. */
   changes: z.array(
     z.object({
       workerId: z.uuid(),
       workerName: z.string(),
-      date: IsoDate,
       line: z.enum(["without-protection", "at-the-ear", "protector"]),
       before: z.string(),
       after: z.string(),
+      days: z.number(),
+      firstDate: IsoDate,
+      lastDate: IsoDate,
     }),
   ),
   /** More than the list holds. */
+  changesCount: z.number(),
+  /** Days of which any line changes. */
   changedDays: z.number(),
   /** Days concerned beyond those looked at, which are the latest; 0: all were. */
   tooMany: z.number(),

@@ -1,16 +1,22 @@
 import { z } from "zod";
 import { Can, IsoDate, Name, Reason } from "./common";
 import { TaskLevelFacts } from "./evaluation";
+import { LEVEL_DOUBTS } from "./level-doubts";
 
-export const TaskLevelInput = TaskLevelFacts.extend({
+const DatedLevel = TaskLevelFacts.extend({
   effectiveFrom: IsoDate,
   sourceNote: z.string().trim().max(2000).default(""),
   /** Needed for every level after the first. */
   reason: Reason.nullable().default(null),
 });
+
+export const TaskLevelInput = DatedLevel.extend({
+  /** The level is right although its bands, or its samples, say another. */
+  acceptedDoubts: z.array(z.enum(LEVEL_DOUBTS)).default([]),
+});
 export type TaskLevelInput = z.infer<typeof TaskLevelInput>;
 
-export const TaskLevelView = TaskLevelInput.extend({
+export const TaskLevelView = DatedLevel.extend({
   id: z.uuid(),
   number: z.number(),
   /** The survey that it rests on, with each sample's own run. */

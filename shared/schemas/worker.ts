@@ -1,12 +1,12 @@
 import { z } from "zod";
-import { Can, IsoDate, Language, Name, PageQuery, pageOf } from "./common";
+import { Can, EmployeeNumber, IsoDate, Language, Name, PageQuery, pageOf } from "./common";
 import { DayFigures } from "./finding";
 
 export const WorkerInput = z
   .object({
     siteId: z.uuid(),
     jobId: z.uuid().nullable().default(null),
-    employeeNumber: Name(40),
+    employeeNumber: EmployeeNumber,
     name: Name(200),
     employer: z.enum(["own", "agency", "contractor"]).default("own"),
     employerName: z.string().trim().max(200).nullable().default(null),

@@ -10,6 +10,7 @@ import { ChangeReview } from "./change-preview";
 const ada = "0190a8f4-0000-7000-8000-000000000001";
 const bo = "0190a8f4-0000-7000-8000-000000000002";
 const atEar = { line: "at-the-ear", before: "under", after: "cant-tell-yet" };
+const on = (firstDate: string, lastDate: string, days: number) => ({ firstDate, lastDate, days });
 
 function show(reply: object, onSave = vi.fn()) {
   render(
@@ -35,27 +36,28 @@ test("says how many days become what, and gives each worker one row for the same
     days: 40,
     workers: 2,
     changedDays: 3,
+    overDays: 0,
     cantTellDays: 2,
     tally: [
       { line: "at-the-ear", after: "cant-tell-yet", days: 2 },
       { line: "protector", after: "too-much", days: 1 },
     ],
     tooMany: 0,
+    changesCount: 2,
     changes: [
-      { workerId: ada, workerName: "A. Holm", date: "2026-03-04", ...atEar },
-      { workerId: ada, workerName: "A. Holm", date: "2026-03-02", ...atEar },
+      { workerId: ada, workerName: "A. Holm", ...atEar, ...on("2026-03-02", "2026-03-04", 2) },
       {
         workerId: bo,
         workerName: "B. Quist",
-        date: "2026-03-03",
         line: "protector",
         before: "good",
         after: "too-much",
+        ...on("2026-03-03", "2026-03-03", 1),
       },
     ],
   });
   expect(screen.getByRole("heading", { name: "2 days become Can’t tell yet" })).toHaveFocus();
-  expect(screen.getByText("3 days change verdict.")).toBeVisible();
+  expect(screen.getByText("3 days change verdict in all.")).toBeVisible();
   expect(screen.getByText("1 day becomes Too much")).toBeVisible();
   const [, first, second] = screen.getAllByRole("row");
   expect(within(first!).getByRole("link", { name: "A. Holm" })).toHaveAttribute(
@@ -68,29 +70,47 @@ test("says how many days become what, and gives each worker one row for the same
   expect(onSave).toHaveBeenCalledOnce();
 });
 
-test("counts every day, however few changes are listed", () => {
+test("who comes over the limit is said first, and the lines’ sum is explained", () => {
   show({
-    days: 400,
-    workers: 9,
-    changedDays: 212,
-    cantTellDays: 212,
-    tally: [{ line: "at-the-ear", after: "cant-tell-yet", days: 212 }],
+    days: 5660,
+    workers: 21,
+    changedDays: 4991,
+    overDays: 40,
+    cantTellDays: 87,
+    tally: [
+      { line: "at-the-ear", after: "over", days: 40 },
+      { line: "at-the-ear", after: "cant-tell-yet", days: 87 },
+      { line: "protector", after: "too-little", days: 1359 },
+      { line: "protector", after: "just-enough", days: 3592 },
+    ],
     tooMany: 0,
-    changes: [{ workerId: ada, workerName: "A. Holm", date: "2026-03-04", ...atEar }],
+    changesCount: 700,
+    changes: [
+      { workerId: ada, workerName: "A. Holm", ...atEar, ...on("2026-03-04", "2026-03-04", 1) },
+    ],
   });
-  expect(screen.getByRole("heading", { name: "212 days become Can’t tell yet" })).toHaveFocus();
-  expect(screen.getByText(/The latest 1 of these changes are listed/)).toBeVisible();
+  expect(
+    screen.getByRole("heading", { name: "40 days become Over, 87 days become Can’t tell yet" }),
+  ).toHaveFocus();
+  // 40 + 87 + 1359 + 3592 = 5078.
+  expect(screen.getByText(/5 078 changes on 4 991 days/)).toBeVisible();
+  expect(screen.getByText("3 592 days become Just enough")).toBeVisible();
+  expect(screen.getByText(/1 of 700 such changes are listed/)).toBeVisible();
 });
 
 test("where days were not looked at, the counts are lower bounds", () => {
   show({
-    days: 5000,
+    days: 5120,
     workers: 30,
     changedDays: 900,
+    overDays: 0,
     cantTellDays: 1,
     tally: [{ line: "at-the-ear", after: "cant-tell-yet", days: 1 }],
     tooMany: 120,
-    changes: [{ workerId: ada, workerName: "A. Holm", date: "2026-03-04", ...atEar }],
+    changesCount: 1,
+    changes: [
+      { workerId: ada, workerName: "A. Holm", ...atEar, ...on("2026-03-04", "2026-03-04", 1) },
+    ],
   });
   expect(
     screen.getByRole("heading", { name: "At least 1 day becomes Can’t tell yet" }),
@@ -104,9 +124,11 @@ test("nobody changes verdict: the change can still be saved", () => {
     days: 12,
     workers: 3,
     changedDays: 0,
+    overDays: 0,
     cantTellDays: 0,
     tally: [],
     tooMany: 0,
+    changesCount: 0,
     changes: [],
   });
   expect(screen.getByRole("heading", { name: "Nobody changes verdict" })).toBeVisible();

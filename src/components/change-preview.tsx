@@ -6,6 +6,7 @@ import type { z } from "zod";
 import type { ProtectorWord, Verdict as VerdictCode } from "../../shared/acoustics/types";
 import { formatShortDate } from "../../shared/format/date";
 import { formatNumber } from "../../shared/format/number";
+import { startsSentence } from "../../shared/format/words";
 import {
   ChangePreview,
   RecomputeProgress as RecomputeProgressView,
@@ -55,37 +56,29 @@ function lineWord(i18n: I18n, line: Change["line"]): string {
   }
 }
 
-interface WorkerChange extends Omit<Change, "date"> {
-  days: number;
-  firstDate: string;
-  lastDate: string;
-}
-
-/** The same change of one worker on many days is one row. */
-function byWorker(changes: readonly Change[]): WorkerChange[] {
-  const found = new Map<string, WorkerChange>();
-  for (const { date, ...change } of changes) {
-    const key = workerChangeKey(change);
-    const row = found.get(key);
-    if (!row) found.set(key, { ...change, days: 1, firstDate: date, lastDate: date });
-    else {
-      row.days += 1;
-      if (date < row.firstDate) row.firstDate = date;
-      if (date > row.lastDate) row.lastDate = date;
-    }
-  }
-  return [...found.values()].sort((a, b) => b.days - a.days);
-}
-
-const workerChangeKey = ({ workerId, line, before, after }: Omit<Change, "date">) =>
+const changeKey = ({ workerId, line, before, after }: Change) =>
   `${workerId} ${line} ${before} ${after}`;
 
 /** Asks who would change verdict, before a change is made. */
 export function useChangePreview(path: string, onError?: (error: unknown) => void) {
-  return useMutation({
-    mutationFn: (body: unknown) => api.post(path, { body, schema: ChangePreview }),
+  const running = useRef<AbortController | null>(null);
+  const preview = useMutation({
+    mutationFn: (body: unknown) => {
+      running.current = new AbortController();
+      return api.post(path, { body, schema: ChangePreview, signal: running.current.signal });
+    },
     onError,
   });
+  useEffect(() => () => running.current?.abort(), []);
+  return {
+    ...preview,
+    /** Nothing is stored by a look: it can be left at any time. */
+    stop() {
+      // Detached first: what was given up is no error.
+      preview.reset();
+      running.current?.abort();
+    },
+  };
 }
 
 /** What a change would do to verdicts, and the choice to make it. */
@@ -112,10 +105,19 @@ export function ChangeReview({
   const locale = useLocale();
   const head = useRef<HTMLHeadingElement>(null);
   useEffect(() => head.current?.focus(), []);
-  const { days, workers, changes, changedDays, cantTellDays, tally, tooMany } = preview;
-  const isWhole =
-    new Set(changes.map(({ workerId, date }) => `${workerId} ${date}`)).size >= changedDays;
+  const {
+    days,
+    workers,
+    changes,
+    changesCount,
+    changedDays,
+    overDays,
+    cantTellDays,
+    tally,
+    tooMany,
+  } = preview;
   const many = (count: number) => formatNumber(count, 0, locale);
+  const isLowerBound = tooMany > 0;
   const changing =
     changedDays === 0
       ? i18n.t("Nobody changes verdict")
@@ -123,17 +125,24 @@ export function ChangeReview({
           days: changedDays,
           figure: many(changedDays),
         });
-  // A verdict that is lost comes before those that change sides.
-  const undecided =
-    tooMany === 0
-      ? i18n.t("{days, plural, one {# day becomes} other {{figure} days become}} Can’t tell yet", {
-          days: cantTellDays,
-          figure: many(cantTellDays),
+  const becoming = (count: number, word: string) =>
+    isLowerBound
+      ? i18n.t("at least {days, plural, one {# day becomes} other {{figure} days become}} {word}", {
+          days: count,
+          figure: many(count),
+          word,
         })
-      : i18n.t(
-          "At least {days, plural, one {# day becomes} other {{figure} days become}} Can’t tell yet",
-          { days: cantTellDays, figure: many(cantTellDays) },
-        );
+      : i18n.t("{days, plural, one {# day becomes} other {{figure} days become}} {word}", {
+          days: count,
+          figure: many(count),
+          word,
+        });
+  // Who comes over a limit is said first, then where it can't be told any more, then all the rest.
+  const gravest = [
+    ...(overDays > 0 ? [becoming(overDays, verdictWord(i18n, "over"))] : []),
+    ...(cantTellDays > 0 ? [becoming(cantTellDays, verdictWord(i18n, "cant-tell-yet"))] : []),
+  ];
+  const linesDays = tally.reduce((sum, line) => sum + line.days, 0);
   const actions = (
     <>
       <FormProblem error={error} />
@@ -148,9 +157,18 @@ export function ChangeReview({
   return (
     <section className="section review" aria-labelledby="review-head">
       <h2 id="review-head" ref={head} tabIndex={-1}>
-        {cantTellDays > 0 ? undecided : changing}
+        {gravest.length > 0 ? startsSentence(gravest.join(", ")) : changing}
       </h2>
-      {cantTellDays > 0 && <p className="review-lead">{changing}.</p>}
+      {gravest.length > 0 && (
+        <p className="review-lead">
+          {isLowerBound
+            ? i18n.t("{changing} among the {figure} latest.", {
+                changing,
+                figure: many(days - tooMany),
+              })
+            : i18n.t("{changing} in all.", { changing })}
+        </p>
+      )}
       <p className="review-lead">
         {what}{" "}
         {i18n.t(
@@ -166,29 +184,24 @@ export function ChangeReview({
             {tally.map(({ line, after, days: count }) => (
               <li key={`${line} ${after}`}>
                 <span>{lineWord(i18n, line)}</span>
-                <b>
-                  {tooMany === 0
-                    ? i18n.t("{count, plural, one {# day becomes} other {# days become}} {word}", {
-                        count,
-                        word: stateWord(i18n, after),
-                      })
-                    : i18n.t(
-                        "at least {count, plural, one {# day becomes} other {# days become}} {word}",
-                        {
-                          count,
-                          word: stateWord(i18n, after),
-                        },
-                      )}
-                </b>
+                <b>{becoming(count, stateWord(i18n, after))}</b>
               </li>
             ))}
           </ul>
+          {linesDays > changedDays && (
+            <p className="review-lead">
+              {i18n.t(
+                "A day that changes in more than one line is counted in each: {lines} changes on {days} days.",
+                { lines: many(linesDays), days: many(changedDays) },
+              )}
+            </p>
+          )}
           {actions}
           <h3 className="mt-7 mb-1">{i18n.t("Who changes verdict")}</h3>
-          <DataTable<WorkerChange>
+          <DataTable<Change>
             caption={i18n.t("Who changes verdict")}
-            rows={byWorker(changes)}
-            rowKey={workerChangeKey}
+            rows={changes}
+            rowKey={changeKey}
             columns={[
               {
                 id: "worker",
@@ -222,7 +235,7 @@ export function ChangeReview({
                 head: i18n.t("Days"),
                 kind: "figure",
                 sortValue: (row) => row.days,
-                cell: (row) => row.days,
+                cell: (row) => many(row.days),
               },
               {
                 id: "dates",
@@ -238,9 +251,12 @@ export function ChangeReview({
               },
             ]}
           />
-          {!isWhole && (
+          {changesCount > changes.length && (
             <p className="table-foot">
-              {i18n.t("The latest {count} of these changes are listed.", { count: changes.length })}
+              {i18n.t("{count} of {all} such changes are listed, the gravest first.", {
+                count: many(changes.length),
+                all: many(changesCount),
+              })}
             </p>
           )}
         </>

@@ -1,7 +1,7 @@
 import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { useMemo } from "react";
-import { outsideCriterion } from "../../shared/acoustics/outside-criterion";
+import { isSameFigure, outsideCriterion } from "../../shared/acoustics/outside-criterion";
 import type {
   Criterion,
   RuleSetVersion,
@@ -16,15 +16,20 @@ import { actionValueDb, levelOf, mainLimit, ruleSetVersion } from "../../shared/
 import type { DayFigures } from "../../shared/schemas/finding";
 import { useLocale } from "../lib/i18n";
 import { DropStrip, type DropStripProps, StripGround, StripScale } from "./drop-strip";
-import type { TargetBand } from "./drop-strip-geometry";
 import { LevelFigure } from "./level-figure";
-import { type StripFrame, stripOfDay } from "./strip-of-day";
+import { bandBelow, type StripFrame, stripOfDay } from "./strip-of-day";
 import { Verdict, verdictWord } from "./verdict";
 
 export function stripFrame(i18n: I18n, locale: Locale, key: string, version: number): StripFrame {
   const ruleSet = ruleSetVersion(key, version);
   if (!ruleSet)
-    return { key: `${key} ${version}`, limits: [], targetBand: null, hasLimitAtEar: false };
+    return {
+      key: `${key} ${version}`,
+      limits: [],
+      targetBand: null,
+      targetLabel: null,
+      hasLimitAtEar: false,
+    };
   const limit = mainLimit(ruleSet);
   const limitDb = levelOf(limit);
   const actionDb = actionValueDb(ruleSet);
@@ -34,17 +39,8 @@ export function stripFrame(i18n: I18n, locale: Locale, key: string, version: num
       { levelDb: limitDb, label: i18n.t("limit {limit}", { limit: formatLimit(limitDb, locale) }) },
     ],
     targetBand: actionDb === null ? null : bandBelow(actionDb),
+    targetLabel: (levelDb) => i18n.t("target {target}", { target: formatLimit(levelDb, locale) }),
     hasLimitAtEar: limit.judged === "at-the-ear",
-  };
-}
-
-/** EN 458: from 15 dB under the action value up to it; its good part 10 to 5 dB under. */
-function bandBelow(actionDb: number): TargetBand {
-  return {
-    lowDb: actionDb - 15,
-    goodLowDb: actionDb - 10,
-    goodHighDb: actionDb - 5,
-    highDb: actionDb,
   };
 }
 
@@ -129,7 +125,7 @@ export function DayStrip({
       widthPx={widthPx}
       k={k}
       isHidden={isHidden}
-      outsideWords={withinSentence(outsideVerdict(i18n, locale, figures).words, locale)}
+      outsideWords={outsideWords(i18n, locale, figures)}
     />
   );
 }
@@ -142,25 +138,58 @@ interface Judged {
 }
 
 const LEVEL_QUANTITIES: ReadonlySet<string> = new Set(["lex-8h", "dose", "table-dose"]);
+const SAYS: readonly VerdictCode[] = ["not-assessed", "under", "cant-tell-yet", "over"];
 
-/** Level criteria without protection, by value; of several at one value the one that says most. */
+/** Criteria without protection that are about the main figure, by value; of several at one value the one that says most. */
 function judgedOutside(figures: DayFigures, ruleSet: RuleSetVersion): Judged[] {
+  const main = outsideCriterion(ruleSet);
   const byValue = new Map<number, Judged>();
   for (const result of figures.governingCriteria) {
     const criterion = ruleSet.criteria.find(({ id }) => id === result.criterionId);
-    if (criterion?.judged !== "without-protection" || !LEVEL_QUANTITIES.has(criterion.quantity))
-      continue;
+    if (criterion?.judged !== "without-protection" || !isSameFigure(criterion, main)) continue;
     const levelDb = levelOf(criterion);
     const before = byValue.get(levelDb);
-    const says = (verdict: VerdictCode) =>
-      ["not-assessed", "under", "cant-tell-yet", "over"].indexOf(verdict);
-    if (before && says(before.verdict) >= says(result.verdict)) continue;
+    if (before && SAYS.indexOf(before.verdict) >= SAYS.indexOf(result.verdict)) continue;
     byValue.set(levelDb, { verdict: result.verdict, isClear: result.isClear, levelDb, criterion });
   }
   return [...byValue.values()].sort((a, b) => a.levelDb - b.levelDb);
 }
 
-/** The verdict without protection with the value that it is about: "Over 85", "Over 80, 85 open", "Under 80". */
+/** Levels without protection that are not the main figure and are over or open, each with its own: "Over 90 dBA: 91.9 (TWA, threshold 90)". */
+export function otherOutside(
+  i18n: I18n,
+  locale: Locale,
+  figures: DayFigures,
+): { id: string; words: string }[] {
+  const ruleSet = ruleSetVersion(figures.ruleSetKey, figures.ruleSetVersion);
+  if (!ruleSet) return [];
+  const main = outsideCriterion(ruleSet);
+  return figures.governingCriteria.flatMap(({ criterionId, verdict, levelDb, bound }) => {
+    const criterion = ruleSet.criteria.find(({ id }) => id === criterionId);
+    if (criterion?.judged !== "without-protection" || !LEVEL_QUANTITIES.has(criterion.quantity))
+      return [];
+    if (isSameFigure(criterion, main) || levelDb === null) return [];
+    const values = {
+      value: criterionValue(locale, criterion),
+      level: formatLevel(levelDb, locale, bound),
+      basis: levelBasis(i18n, locale, criterion) ?? "",
+    };
+    if (verdict === "over")
+      return [{ id: criterionId, words: i18n.t("Over {value}: {level} ({basis})", values) }];
+    if (verdict === "cant-tell-yet")
+      return [{ id: criterionId, words: i18n.t("{value} open: {level} ({basis})", values) }];
+    return [];
+  });
+}
+
+/** What is said of the noise without protection after its level, as the end of a sentence. */
+export function outsideWords(i18n: I18n, locale: Locale, figures: DayFigures): string {
+  return [outsideVerdict(i18n, locale, figures), ...otherOutside(i18n, locale, figures)]
+    .map(({ words }) => withinSentence(words, locale))
+    .join("; ");
+}
+
+/** The main figure's verdict without protection with the value that it is about: "Over 85", "Over 80, 85 open", "Under 80". */
 export function outsideVerdict(
   i18n: I18n,
   locale: Locale,
@@ -210,7 +239,8 @@ export function AtEarFigure({ figures }: { figures: DayFigures }) {
   return (
     <LevelFigure
       levelDb={figures.atEarDb}
-      uncertaintyDb={figures.uncertaintyDb}
+      uncertaintyDb={figures.atEarBound === "exact" ? figures.uncertaintyDb : null}
+      bound={figures.atEarBound}
       isStrong={figures.atEarDb !== null}
     >
       {frame?.hasLimitAtEar === false && figures.atEarDb !== null ? (
@@ -239,8 +269,33 @@ export function OutsideFigure({ figures }: { figures: DayFigures }) {
         {words}
       </Verdict>
       {basis && figures.outsideDb !== null && <span className="beneath">{basis}</span>}
+      {otherOutside(i18n, locale, figures).map((other) => (
+        <span key={other.id} className="beneath">
+          {other.words}
+        </span>
+      ))}
     </LevelFigure>
   );
+}
+
+export const isBoundReason = (reason: string | null): boolean =>
+  reason === "only-upper-bound" || reason === "only-lower-bound";
+
+/** That only a bound of the level is known, and the reading that would settle it. */
+function openByBound(i18n: I18n, locale: Locale, figures: DayFigures): string | undefined {
+  const ruleSet = ruleSetVersion(figures.ruleSetKey, figures.ruleSetVersion);
+  if (!ruleSet) return undefined;
+  const { quantity, exchangeRateDb, thresholdDb } = outsideCriterion(ruleSet);
+  if (quantity === "lex-8h" || exchangeRateDb === null)
+    return i18n.t("only a bound is known; an LAeq would settle it");
+  const exchange = formatLimit(exchangeRateDb, locale);
+  return thresholdDb === null
+    ? i18n.t("only a bound is known; an average with exchange {exchange} would settle it", {
+        exchange,
+      })
+    : i18n.t("only a bound is known; an average with threshold {threshold} would settle it", {
+        threshold: formatLimit(thresholdDb, locale),
+      });
 }
 
 /** The task and level that decide the protector's word, or why there is none. */
@@ -250,7 +305,8 @@ export function useDecidedBy(figures: DayFigures): string | undefined {
   if (figures.hasProtector === "no") return undefined;
   if (figures.word === null) {
     const reason = asReason(figures.reason);
-    return reason ? reasonText(i18n, reason) : undefined;
+    if (!reason) return undefined;
+    return isBoundReason(reason) ? openByBound(i18n, locale, figures) : reasonText(i18n, reason);
   }
   if (figures.whileWornDb === null) return figures.decidingTaskName ?? undefined;
   const level = formatLevel(figures.whileWornDb, locale);

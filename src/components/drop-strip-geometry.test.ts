@@ -6,6 +6,7 @@ const day: StripFacts = {
   outsideUDb: 2.3,
   outsideBound: "exact",
   atEarDb: 80,
+  atEarBound: "exact",
   atEarUDb: 2.3,
   atEarActiveDb: null,
   atEarAsWorkedDb: null,

@@ -19,6 +19,8 @@ const CAP_CLEARANCE = 4;
 export interface StripLimit {
   readonly levelDb: number;
   readonly label: string;
+  /** A worker's own target where the rule has no band: drawn as an edge and not as a limit. */
+  readonly isTarget?: boolean;
 }
 
 export interface TargetBand {
@@ -34,6 +36,7 @@ export interface StripFacts {
   readonly outsideUDb: number | null;
   readonly outsideBound: "exact" | "upper" | "lower";
   readonly atEarDb: number | null;
+  readonly atEarBound: "exact" | "upper" | "lower";
   readonly atEarUDb: number | null;
   readonly atEarActiveDb: number | null;
   readonly atEarAsWorkedDb: number | null;
@@ -72,7 +75,7 @@ export interface StripGeometry {
   readonly boxHeight: number;
   readonly height: number;
   readonly band: { lowX: number; highX: number; goodLowX: number; goodHighX: number } | null;
-  readonly limits: readonly { x: number; label: string }[];
+  readonly limits: readonly { x: number; label: string; isTarget: boolean }[];
   readonly bar: {
     outerX: number;
     outerY: number;
@@ -127,6 +130,7 @@ export function stripGeometry(facts: StripFacts, { widthPx, k }: StripSize): Str
   const limits = facts.limits.map((limit) => ({
     x: snapLimit(xOf(limit.levelDb)),
     label: limit.label,
+    isTarget: limit.isTarget ?? false,
     levelDb: limit.levelDb,
   }));
   const band = facts.targetBand && {
@@ -210,7 +214,8 @@ export function stripGeometry(facts: StripFacts, { widthPx, k }: StripSize): Str
           width: innerWidth,
           height: 12 * k,
         };
-        whiskers.push(...whisker(atEarDb, facts.atEarUDb, inner, 17.4, true));
+        if (facts.atEarBound === "exact")
+          whiskers.push(...whisker(atEarDb, facts.atEarUDb, inner, 17.4, true));
       }
     }
     if (outsideDb !== null && atEarDb !== null) {
@@ -267,7 +272,7 @@ export function stripGeometry(facts: StripFacts, { widthPx, k }: StripSize): Str
     boxHeight: BOX_HEIGHT * k,
     height: BOX_HEIGHT * k + CARET_SPACE,
     band,
-    limits: limits.map(({ x, label }) => ({ x, label })),
+    limits: limits.map(({ x, label, isTarget }) => ({ x, label, isTarget })),
     bar,
     outer,
     inner,

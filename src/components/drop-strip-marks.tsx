@@ -34,13 +34,17 @@ export function Halos({ geometry: { bar, limits } }: { geometry: StripGeometry }
 }
 
 export function Limits({ geometry: { limits, boxHeight } }: { geometry: StripGeometry }) {
-  return limits.map(({ x, label }) => (
-    <path
-      key={label}
-      className="strip-ink"
-      d={`M${x - 3} 0h6v1.5h-2V${boxHeight - 1.5}h2v1.5h-6v-1.5h2V1.5h-2Z`}
-    />
-  ));
+  return limits.map(({ x, label, isTarget }) =>
+    isTarget ? (
+      <line key={label} className="strip-edge" x1={x + 0.5} x2={x + 0.5} y2={boxHeight} />
+    ) : (
+      <path
+        key={label}
+        className="strip-ink"
+        d={`M${x - 3} 0h6v1.5h-2V${boxHeight - 1.5}h2v1.5h-6v-1.5h2V1.5h-2Z`}
+      />
+    ),
+  );
 }
 
 function TickMark({

@@ -13,6 +13,7 @@ const day: DropStripProps = {
   outsideUDb: 2.3,
   outsideBound: "exact",
   atEarDb: 86.7,
+  atEarBound: "exact",
   atEarUDb: 2.3,
   atEarActiveDb: 77.2,
   atEarAsWorkedDb: null,

@@ -114,9 +114,13 @@ function UnbrokenBand({ geometry: { band } }: { geometry: StripGeometry }) {
 }
 
 function UnbrokenLimits({ geometry: { limits } }: { geometry: StripGeometry }) {
-  return limits.map(({ x, label }) => (
-    <rect key={label} className="strip-ink" x={x - 1} width={2} height="100%" />
-  ));
+  return limits.map(({ x, label, isTarget }) =>
+    isTarget ? (
+      <line key={label} className="strip-edge" x1={x + 0.5} x2={x + 0.5} y2="100%" />
+    ) : (
+      <rect key={label} className="strip-ink" x={x - 1} width={2} height="100%" />
+    ),
+  );
 }
 
 function Band({ geometry: { band, boxHeight } }: { geometry: StripGeometry }) {
@@ -180,7 +184,7 @@ function CardFigures({ props, geometry }: { props: DropStripProps; geometry: Str
   const locale = useLocale();
   const { outer, inner, full, ring, boxHeight } = geometry;
   const below = boxHeight + 19;
-  const atEar = formatLevel(props.atEarDb, locale);
+  const atEar = formatLevel(props.atEarDb, locale, props.atEarBound);
   const active = formatLevel(props.atEarActiveDb, locale);
   const innerX = inner?.x ?? full?.x ?? null;
   // The two figures beneath must not touch; the one that does not count gives way.
@@ -302,6 +306,7 @@ function levelScale(limits: readonly StripLimit[], targetBand: TargetBand | null
     outsideUDb: null,
     outsideBound: "exact",
     atEarDb: null,
+    atEarBound: "exact",
     atEarUDb: null,
     atEarActiveDb: null,
     atEarAsWorkedDb: null,

@@ -23,9 +23,9 @@ import type { z } from "zod";
 import { formatShortDate, parseDate, parseTime } from "../../shared/format/date";
 import { parseDuration } from "../../shared/format/duration";
 import { editNumber, type Parsed, parseNumber } from "../../shared/format/number";
+import { type FieldIssue, issueText } from "../../shared/problems/issue-text";
 import { ApiError } from "../lib/api";
 import { useLocale } from "../lib/i18n";
-import { type FieldIssue, issueText } from "../../shared/problems/issue-text";
 import { Button } from "./button";
 
 /**

@@ -22,8 +22,7 @@ test("labels that would print on each other stand in rows, and no line runs thro
   }));
   for (const one of spans)
     for (const other of spans)
-      if (other.row > one.row)
-        expect(other.lineX < one.from || other.lineX > one.to).toBe(true);
+      if (other.row > one.row) expect(other.lineX < one.from || other.lineX > one.to).toBe(true);
 });
 
 test("a long label stays within the picture", () => {

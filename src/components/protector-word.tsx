@@ -39,9 +39,12 @@ function standardWord(i18n: I18n, word: WordCode): string | null {
 export function ProtectorWord({
   word,
   beneath,
+  isOpen = false,
   showsStandardWord = false,
 }: {
   word: WordCode | null;
+  /** Only a bound of the level is known, and it proves no word. */
+  isOpen?: boolean;
   beneath?: ReactNode;
   showsStandardWord?: boolean;
 }) {
@@ -51,7 +54,11 @@ export function ProtectorWord({
   return (
     <span className="two-lines">
       <span className={word === null ? "not-assessed" : isFault ? "is-fault" : undefined}>
-        {word === null ? i18n.t("Not assessed") : protectorWordText(i18n, word)}
+        {word !== null
+          ? protectorWordText(i18n, word)
+          : isOpen
+            ? i18n.t("Can’t tell yet")
+            : i18n.t("Not assessed")}
       </span>
       {standard && <span className="beneath italic">{standard}</span>}
       {beneath !== undefined && <span className="beneath">{beneath}</span>}

@@ -10,6 +10,7 @@ import { Button } from "./button";
 import { ChangeReview, useChangePreview } from "./change-preview";
 import { FormActions, SubmitButton } from "./form";
 import { FormProblem } from "./form-problem";
+import { Status } from "./status";
 
 /** The steps of a change that moves verdicts: filled in, looked at with who changes verdict, then saved once. */
 export function useReviewedChange<Body extends object, View>({
@@ -60,7 +61,7 @@ type Change<Body extends object> = Pick<
   ReturnType<typeof useReviewedChange<Body, unknown>>,
   "reviewed" | "back"
 > & {
-  readonly preview: { readonly error: unknown; readonly isPending: boolean };
+  readonly preview: { readonly error: unknown; readonly isPending: boolean; stop(): void };
   readonly save: {
     readonly error: unknown;
     readonly isPending: boolean;
@@ -109,7 +110,17 @@ export function LookActions({
       <FormProblem error={preview.error} />
       <FormActions>
         <SubmitButton isBusy={preview.isPending}>{i18n.t("See who changes verdict")}</SubmitButton>
-        <Button onClick={onLeave}>{i18n.t("Leave as it was")}</Button>
+        {preview.isPending ? (
+          <Button onClick={preview.stop}>{i18n.t("Stop looking")}</Button>
+        ) : (
+          <Button onClick={onLeave}>{i18n.t("Leave as it was")}</Button>
+        )}
+        <Status>
+          {preview.isPending &&
+            i18n.t(
+              "Every day that rests on this is judged as it would be; with thousands of days that takes some seconds. Nothing is stored.",
+            )}
+        </Status>
       </FormActions>
     </>
   );

@@ -68,7 +68,7 @@ describe("a spectrum is held to its level", () => {
     await type("87.9");
     await paste(flat);
     expect(screen.getByText(/A-weighted sum 87.0 dB\(A\), LC − LA 1.5 dB/)).toBeVisible();
-    expect(screen.queryByText(/away from the level/)).toBeNull();
+    expect(screen.queryByText(/although the bands/)).toBeNull();
     await save();
     expect(onSave).toHaveBeenCalledWith({ levelDb: 87.9, bands: Array(8).fill(80) });
   });
@@ -77,7 +77,7 @@ describe("a spectrum is held to its level", () => {
     const onSave = show();
     await type("88.1");
     await paste(flat);
-    const question = screen.getByLabelText(/−1.1 dB away from the level/);
+    const question = screen.getByLabelText(/bands lie −1.1 dB away/);
     await save();
     expect(onSave).not.toHaveBeenCalled();
     expect(question).toHaveFocus();

@@ -1,38 +1,33 @@
 import { useLingui } from "@lingui/react";
-import { type ReactNode, useId, useRef, useState } from "react";
+import { type ReactNode, type RefObject, useId, useRef, useState } from "react";
 import type { FieldPath, FieldValues, PathValue, UseFormReturn } from "react-hook-form";
 import {
   A_WEIGHTING_DB,
   lcMinusLaOfSpectrumDb,
   weightedSumDb,
 } from "../../shared/acoustics/protection/octave-band";
-import { OCTAVE_BANDS_HZ, type OctaveBandValues } from "../../shared/acoustics/types";
 import { formatLevel, formatLevelChange } from "../../shared/format/level";
+import { roundTo } from "../../shared/format/number";
+import { findLevelDoubts, isSpectrum } from "../../shared/schemas/level-doubts";
 import { useLocale } from "../lib/i18n";
 import { BandFields } from "./band-fields";
+import { TextButton } from "./link";
 import { readBands } from "./read-bands";
 import { Status } from "./status";
 
-/** Further apart than that, a level and its spectrum are asked about, dB. */
-const ASKED_FROM_DB = 1;
 /** No file of eight levels is larger, bytes. */
 const MOST_BYTES = 1_000_000;
-
-const isSpectrum = (bands: unknown): bands is OctaveBandValues =>
-  Array.isArray(bands) &&
-  bands.length === OCTAVE_BANDS_HZ.length &&
-  bands.every((level, band) => typeof level === "number" || (band === 0 && level === null));
 
 /** What a spectrum adds up to, and by how much that misses the level that stands beside it. */
 export function checkSpectrum(bands: unknown, levelDb: unknown) {
   if (!isSpectrum(bands)) return null;
   const sumDb = weightedSumDb(bands, A_WEIGHTING_DB);
-  const offDb = typeof levelDb === "number" ? sumDb - levelDb : null;
   return {
     sumDb,
     lcMinusLaDb: lcMinusLaOfSpectrumDb(bands),
-    offDb,
-    isAsked: offDb !== null && Math.abs(offDb) > ASKED_FROM_DB,
+    offDb: typeof levelDb === "number" ? sumDb - levelDb : null,
+    isAsked:
+      findLevelDoubts({ metric: { kind: "laeq" }, levelDb, octaveBandsDb: bands }).length > 0,
   };
 }
 
@@ -40,32 +35,36 @@ export interface SpectrumCheck {
   readonly found: ReturnType<typeof checkSpectrum>;
   readonly isAccepted: boolean;
   accept(isAccepted: boolean): void;
-  readonly box: React.RefObject<HTMLInputElement | null>;
+  readonly box: RefObject<HTMLInputElement | null>;
   /** Whether the form may be sent; else the question gets the focus. */
   isSettled(): boolean;
 }
 
-/** Holds a form's spectrum to its level; what misses it is sent only once somebody has said that it is meant. */
-export function useSpectrumCheck(bands: unknown, levelDb: unknown): SpectrumCheck {
+/** A question about figures that contradict each other: the form is sent only once it is answered. */
+export function useFiguresQuestion(isAsked: boolean, figures: string) {
   const box = useRef<HTMLInputElement>(null);
-  const found = checkSpectrum(bands, levelDb);
   // An answer is to these figures; others are asked about anew.
-  const figures = JSON.stringify([bands, levelDb]);
   const [answered, setAnswered] = useState<string | null>(null);
   const isAccepted = answered === figures;
   return {
-    found,
     isAccepted,
-    accept: (isYes) => setAnswered(isYes ? figures : null),
+    accept: (isYes: boolean) => setAnswered(isYes ? figures : null),
     box,
     isSettled() {
-      if (!found?.isAsked || isAccepted) return true;
+      if (!isAsked || isAccepted) return true;
       const folded = box.current?.closest("details");
       if (folded) folded.open = true;
       box.current?.focus();
       return false;
     },
   };
+}
+
+/** Holds a form's spectrum to its level; what misses it is sent only once somebody has said that it is meant. */
+export function useSpectrumCheck(bands: unknown, levelDb: unknown): SpectrumCheck {
+  const found = checkSpectrum(bands, levelDb);
+  const question = useFiguresQuestion(found?.isAsked ?? false, JSON.stringify([bands, levelDb]));
+  return { found, ...question };
 }
 
 /** Octave levels, typed, pasted or from a file, with what they add up to. */
@@ -75,17 +74,26 @@ export function SpectrumField<Values extends FieldValues, Output>({
   label,
   note,
   check,
+  onTakeLevel,
 }: {
   form: UseFormReturn<Values, unknown, Output>;
   name: FieldPath<Values>;
   label: string;
   note?: ReactNode;
   check: SpectrumCheck;
+  /** Puts what the bands add up to into the level's field. */
+  onTakeLevel?: (levelDb: number) => void;
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const id = useId();
   const [fileWord, setFileWord] = useState<string | null>(null);
+
+  const put = (bands: readonly (number | null)[]) =>
+    form.setValue(name, bands as PathValue<Values, FieldPath<Values>>, {
+      shouldDirty: true,
+      shouldValidate: form.formState.isSubmitted,
+    });
 
   async function take(file: File | undefined) {
     if (!file) return;
@@ -98,11 +106,7 @@ export function SpectrumField<Values extends FieldValues, Output>({
         ? i18n.t("Read from {file}.", { file: file.name })
         : i18n.t("{file} holds no levels of eight octave bands.", { file: file.name }),
     );
-    if (isWhole)
-      form.setValue(name, values as PathValue<Values, FieldPath<Values>>, {
-        shouldDirty: true,
-        shouldValidate: form.formState.isSubmitted,
-      });
+    if (isWhole) put(values);
   }
 
   const { found } = check;
@@ -149,12 +153,31 @@ export function SpectrumField<Values extends FieldValues, Output>({
               onChange={(event) => check.accept(event.target.checked)}
             />
             <span>
-              {i18n.t(
-                "The sum lies {difference} dB away from the level. They belong together all the same.",
-                { difference: formatLevelChange(found.offDb, locale) },
-              )}
+              {i18n.t("The level is right although the bands lie {difference} dB away from it.", {
+                difference: formatLevelChange(found.offDb, locale),
+              })}
             </span>
           </label>
+        )}
+        {found?.isAsked && found.offDb !== null && onTakeLevel && (
+          <span className="spectrum-ways">
+            <TextButton onClick={() => onTakeLevel(roundTo(found.sumDb, 1))}>
+              {i18n.t("Take the bands’ level, {level} dB(A)", {
+                level: formatLevel(found.sumDb, locale),
+              })}
+            </TextButton>
+            <TextButton
+              onClick={() => {
+                const bands = form.getValues(name) as readonly (number | null)[];
+                const shiftDb = roundTo(-(found.offDb ?? 0), 1);
+                put(bands.map((band) => (band === null ? null : roundTo(band + shiftDb, 1))));
+              }}
+            >
+              {i18n.t("Shift the bands with it, by {difference} dB", {
+                difference: formatLevelChange(-found.offDb, locale),
+              })}
+            </TextButton>
+          </span>
         )}
       </div>
     </div>

@@ -20,13 +20,18 @@ export function stripLabel(i18n: I18n, props: StripWords): string {
 
   if (props.atEarDb === null) sentences.push(i18n.t("At the ear not known."));
   else {
+    const atEar = { level: level(props.atEarDb) };
     const parts = [
-      props.atEarUDb === null
-        ? i18n.t("At the ear {level}", { level: level(props.atEarDb) })
-        : i18n.t("At the ear {level} plus or minus {uncertainty}", {
-            level: level(props.atEarDb),
-            uncertainty: level(props.atEarUDb),
-          }),
+      props.atEarBound === "lower"
+        ? i18n.t("At the ear at least {level}", atEar)
+        : props.atEarBound === "upper"
+          ? i18n.t("At the ear at most {level}", atEar)
+          : props.atEarUDb === null
+            ? i18n.t("At the ear {level}", atEar)
+            : i18n.t("At the ear {level} plus or minus {uncertainty}", {
+                level: level(props.atEarDb),
+                uncertainty: level(props.atEarUDb),
+              }),
       ...props.limits.map((limit) => limit.label),
     ];
     if (props.isExpected) parts.push(i18n.t("expected"));

@@ -7,8 +7,34 @@ export interface StripFrame {
   readonly key: string;
   readonly limits: readonly StripLimit[];
   readonly targetBand: TargetBand | null;
+  /** How a worker's own target is called; null where none is drawn. */
+  readonly targetLabel: ((levelDb: number) => string) | null;
   /** Whether the rule judges a daily limit at the ear at all. */
   readonly hasLimitAtEar: boolean;
+}
+
+/** EN 458: from 15 dB under the action value up to it; its good part 10 to 5 dB under. */
+export function bandBelow(actionDb: number): TargetBand {
+  return {
+    lowDb: actionDb - 15,
+    goodLowDb: actionDb - 10,
+    goodHighDb: actionDb - 5,
+    highDb: actionDb,
+  };
+}
+
+/** The limits and the target of one worker's strip: a stricter target of the worker's own moves the band, or is a mark of its own. */
+export function groundOf(
+  { ownTargetDb }: Pick<DayFigures, "ownTargetDb">,
+  { limits, targetBand, targetLabel }: Pick<StripFrame, "limits" | "targetBand" | "targetLabel">,
+): Pick<StripWords, "limits" | "targetBand"> {
+  if (ownTargetDb === null) return { limits, targetBand };
+  if (targetBand) return { limits, targetBand: bandBelow(ownTargetDb) };
+  if (targetLabel === null) return { limits, targetBand };
+  return {
+    limits: [...limits, { levelDb: ownTargetDb, label: targetLabel(ownTargetDb), isTarget: true }],
+    targetBand,
+  };
 }
 
 /** A stored day as the strip draws it. */
@@ -18,12 +44,12 @@ export function stripOfDay(figures: DayFigures, frame: StripFrame): StripWords {
     outsideUDb: figures.uncertaintyDb,
     outsideBound: figures.outsideBound,
     atEarDb: figures.atEarDb,
-    atEarUDb: figures.uncertaintyDb,
+    atEarBound: figures.atEarBound,
+    atEarUDb: figures.atEarBound === "exact" ? figures.uncertaintyDb : null,
     atEarActiveDb: figures.atEarActiveDb,
     atEarAsWorkedDb: figures.atEarAsWorkedDb,
     whileWornDb: figures.whileWornDb,
-    limits: frame.limits,
-    targetBand: frame.targetBand,
+    ...groundOf(figures, frame),
     isExpected: false,
     hasProtector: figures.hasProtector,
     word: figures.word,

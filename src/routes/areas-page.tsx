@@ -13,7 +13,8 @@ import { taskQueries } from "../features/tasks/queries";
 import { useEditParam } from "../lib/edit-param";
 import { zoneWord } from "../lib/register-words";
 import { paths } from "../paths";
-import { RuleWays, SiteChoice, useSiteChoice } from "./register-frame";
+import { RuleWays, SiteChoice } from "./register-frame";
+import { useSiteChoice } from "./site-choice";
 
 type Area = z.infer<typeof AreaView>;
 

@@ -17,7 +17,8 @@ import { EndSpanForm, MemberForm, type Span, SupervisorForm } from "../features/
 import { useEditParam } from "../lib/edit-param";
 import { useLocale } from "../lib/i18n";
 import { paths } from "../paths";
-import { RuleWays, useSiteChoice } from "./register-frame";
+import { RuleWays } from "./register-frame";
+import { useSiteChoice } from "./site-choice";
 
 interface Dated {
   readonly fromDate: string;

@@ -69,8 +69,7 @@ function CrewSheet({ crewId }: { crewId: string }) {
   const ruleSet = data ? ruleSetVersion(data.governingRuleSet, data.ruleSetVersion) : null;
   const refresh = () => void sheet.refetch();
   const now = useNow().toISOString();
-  const isToday =
-    !data || localDateOf(now, data.crew.timeZone) === data.expected.date;
+  const isToday = !data || localDateOf(now, data.crew.timeZone) === data.expected.date;
 
   let expected: ReactNode = <LoadingPart name="expected" />;
   let last: ReactNode = <LoadingPart name="last" />;
@@ -216,15 +215,7 @@ function CrewChoice({
 }
 
 /** On a phone one part is shown at a time; its words stand at the foot. */
-function FootWords({
-  crewId,
-  shows,
-  isToday,
-}: {
-  crewId: string;
-  shows: Part;
-  isToday: boolean;
-}) {
+function FootWords({ crewId, shows, isToday }: { crewId: string; shows: Part; isToday: boolean }) {
   const { i18n } = useLingui();
   const words: Record<Part, string> = {
     expected: isToday ? i18n.t("Expected today") : i18n.t("Expected next"),

@@ -13,7 +13,8 @@ import { crewQueries } from "../features/crews/queries";
 import { useEditParam } from "../lib/edit-param";
 import { useLocale } from "../lib/i18n";
 import { paths } from "../paths";
-import { RuleWays, SiteChoice, useSiteChoice } from "./register-frame";
+import { RuleWays, SiteChoice } from "./register-frame";
+import { useSiteChoice } from "./site-choice";
 
 /** The crews of the sites with their usual shift, their size today and their supervisors. */
 export function Component() {

@@ -9,7 +9,7 @@ import { FieldSheetPage, sheetSubjects } from "../features/surveys/field-sheet";
 import { surveyQueries } from "../features/surveys/queries";
 import { paths } from "../paths";
 import { MeasuringWays } from "./measuring-frame";
-import { useSiteChoice } from "./register-frame";
+import { useSiteChoice } from "./site-choice";
 import "../styles/field-sheet.css";
 
 /** What is carried along when it is measured: a page of A4 for each task, or for each worker. */

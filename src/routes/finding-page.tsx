@@ -9,8 +9,9 @@ import { noticedSentence, orderSentence, remedyFigure } from "../../shared/findi
 import { findingStateWord, findingWord } from "../../shared/findings/words";
 import { formatDate, formatInstant, formatShortDate } from "../../shared/format/date";
 import { formatLevel } from "../../shared/format/level";
+import { formatNumber } from "../../shared/format/number";
 import { RULE_SETS, ruleSetVersion } from "../../shared/rule-sets";
-import type { DayFigures, FindingView } from "../../shared/schemas/finding";
+import type { FindingView } from "../../shared/schemas/finding";
 import { Button, ButtonLink } from "../components/button";
 import { type DataColumn, DataTable } from "../components/data-table";
 import {
@@ -32,7 +33,7 @@ import { LookAtNotices } from "../features/notices/outgoing-notice";
 import { useUser } from "../features/session/session";
 import { useLocale } from "../lib/i18n";
 import { paths } from "../paths";
-import { useSiteChoice } from "./register-frame";
+import { useSiteChoice } from "./site-choice";
 import "../styles/findings.css";
 import "../styles/waiting.css";
 
@@ -192,17 +193,18 @@ function Evidence({ finding }: { finding: FindingView }) {
   const locale = useLocale();
   const { evidence, worker } = finding;
   const frame = useTableFrame(evidence);
-  const columns: DataColumn<DayFigures>[] = [
+  const columns: DataColumn<FindingView["evidence"][number]>[] = [
     {
       id: "wrong",
-      head: i18n.t("Day"),
+      head: worker ? i18n.t("Day") : i18n.t("Day, and whose"),
       isRowHead: true,
       cell: (day) => (
-        <TextLink
-          to={worker ? paths.result(worker.id, day.date) : paths.storedResult(day.resultId)}
-        >
-          {formatShortDate(day.date, locale)}
-        </TextLink>
+        <span className="two-lines">
+          <TextLink to={paths.result(day.worker.id, day.date)}>
+            {formatShortDate(day.date, locale)}
+          </TextLink>
+          {!worker && <span className="beneath">{day.worker.name}</span>}
+        </span>
       ),
       sortValue: ({ date }) => date,
     },
@@ -268,6 +270,14 @@ function Evidence({ finding }: { finding: FindingView }) {
           </Empty>
         }
       />
+      {finding.daysCount > evidence.length && evidence.length > 0 && (
+        <p className="table-foot">
+          {i18n.t("The latest {count} of {all} days are listed.", {
+            count: evidence.length,
+            all: formatNumber(finding.daysCount, 0, locale),
+          })}
+        </p>
+      )}
     </div>
   );
 }
@@ -371,11 +381,16 @@ function Margin({ finding }: { finding: FindingView }) {
       <MarginNote title={i18n.t("Since when, until when")}>
         <p>
           {finding.daysCount > 1
-            ? i18n.t("{count, plural, other {# days, {first} to {last}.}}", {
-                count: finding.daysCount,
-                first: formatDate(finding.firstDate, locale),
-                last: formatDate(finding.lastDate, locale),
-              })
+            ? i18n.t(
+                "{days, plural, one {# day} other {{figure} days}}{workers, plural, =1 {} other { of # workers}}, {first} to {last}.",
+                {
+                  days: finding.daysCount,
+                  figure: formatNumber(finding.daysCount, 0, locale),
+                  workers: finding.workersCount,
+                  first: formatDate(finding.firstDate, locale),
+                  last: formatDate(finding.lastDate, locale),
+                },
+              )
             : i18n.t("{date}.", { date: formatDate(finding.lastDate, locale) })}
         </p>
         {finding.dueOn && finding.state !== "closed" && (

@@ -9,7 +9,7 @@ import { Folio, PageBody, PageHead } from "../components/page";
 import { FindingsTable } from "../features/findings/findings-table";
 import { findingQueries } from "../features/findings/queries";
 import { useUser } from "../features/session/session";
-import { useSiteChoice } from "./register-frame";
+import { useSiteChoice } from "./site-choice";
 import "../styles/findings.css";
 
 const STATES = FindingFilter.shape.state;
@@ -44,7 +44,7 @@ export function Component() {
         <PageHead
           title={i18n.t("Findings")}
           lead={i18n.t(
-            "What the program noticed and a person must act on. The soonest due are read first; within them the worst stand at the top.",
+            "What the program noticed and a person must act on. Overdue ones stand first, then the soonest due; of those due on one day the worst at the top.",
           )}
         />
         <FilterRow label={i18n.t("Narrow the findings")}>

@@ -18,7 +18,7 @@ import { useLocale } from "../lib/i18n";
 import { isOffNominal } from "../lib/nominal-check";
 import { paths } from "../paths";
 import { MeasuringWays } from "./measuring-frame";
-import { useSiteChoice } from "./register-frame";
+import { useSiteChoice } from "./site-choice";
 import "../styles/register.css";
 import "../styles/surveys.css";
 

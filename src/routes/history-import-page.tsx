@@ -4,6 +4,7 @@ import { useEffect, useRef, useState } from "react";
 import { useParams } from "react-router-dom";
 import { formatInstant } from "../../shared/format/date";
 import { formatNumber } from "../../shared/format/number";
+import { issueText } from "../../shared/problems/issue-text";
 import type { HistoryHead, HistoryImportView } from "../../shared/schemas/history";
 import { Button, ButtonLink } from "../components/button";
 import { Failed } from "../components/failed";
@@ -26,7 +27,6 @@ import { draftOf, type MappingDraft, toMapping } from "../features/histories/map
 import { MappingForm } from "../features/histories/mapping-form";
 import { ApiError } from "../lib/api";
 import { useLocale } from "../lib/i18n";
-import { issueText } from "../../shared/problems/issue-text";
 import { paths } from "../paths";
 import "../styles/histories.css";
 import { MeasuringWays } from "./measuring-frame";

@@ -22,7 +22,7 @@ import { OutgoingNotice } from "../features/notices/outgoing-notice";
 import { useUser } from "../features/session/session";
 import { useLocale } from "../lib/i18n";
 import { paths } from "../paths";
-import { useSiteChoice } from "./register-frame";
+import { useSiteChoice } from "./site-choice";
 
 const MEGABYTE = 1024 * 1024;
 

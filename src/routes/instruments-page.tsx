@@ -14,7 +14,8 @@ import { useLocale } from "../lib/i18n";
 import { instrumentKindWord, settingsWords } from "../lib/register-words";
 import { paths } from "../paths";
 import { MeasuringWays } from "./measuring-frame";
-import { SiteChoice, useSiteChoice } from "./register-frame";
+import { SiteChoice } from "./register-frame";
+import { useSiteChoice } from "./site-choice";
 
 const DAY_MS = 86_400_000;
 const SOON_DAYS = 30;

@@ -14,7 +14,8 @@ import { jobQueries } from "../features/jobs/queries";
 import { taskQueries } from "../features/tasks/queries";
 import { useEditParam } from "../lib/edit-param";
 import { useLocale } from "../lib/i18n";
-import { RuleWays, SiteChoice, useSiteChoice } from "./register-frame";
+import { RuleWays, SiteChoice } from "./register-frame";
+import { useSiteChoice } from "./site-choice";
 
 type Job = z.infer<typeof JobView>;
 

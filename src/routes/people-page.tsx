@@ -32,6 +32,7 @@ export function Component() {
           error={people.error}
           onRetry={() => void people.refetch()}
           timeZone={sites[0]?.timeZone ?? "UTC"}
+          namesZone={new Set(sites.map(({ timeZone }) => timeZone)).size > 1}
         />
       </PageBody>
       <Folio caution={i18n.t("Granting and ending access are events in the trail.")}>

@@ -123,7 +123,12 @@ function SignInFacts({ person, timeZone }: { person: UserView; timeZone: string 
   const { i18n } = useLingui();
   const locale = useLocale();
   const { email, expectedSubject, lastSignInAt, isBound, revokedAt } = person;
-  const at = (instant: string) => formatInstant(instant, timeZone, locale);
+  const { sites } = useUser();
+  const isOneZone = new Set(sites.map((site) => site.timeZone)).size <= 1;
+  const at = (instant: string) => {
+    const time = formatInstant(instant, timeZone, locale);
+    return isOneZone ? time : i18n.t("{time} ({zone})", { time, zone: timeZone });
+  };
   return (
     <>
       <p className="sign-in-name">{email ?? expectedSubject ?? i18n.t("with a code")}</p>

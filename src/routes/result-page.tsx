@@ -3,7 +3,7 @@ import { useQuery } from "@tanstack/react-query";
 import { lazy, Suspense } from "react";
 import { useParams } from "react-router-dom";
 import { formatDate } from "../../shared/format/date";
-import { formatLevel } from "../../shared/format/level";
+import { formatLevel, formatLimit } from "../../shared/format/level";
 import { ruleSetVersion } from "../../shared/rule-sets";
 import type { ResultView } from "../../shared/schemas/result";
 import {
@@ -16,6 +16,7 @@ import {
 import { Failed } from "../components/failed";
 import { TextLink } from "../components/link";
 import { Folio, PageBody, PageHead } from "../components/page";
+import { groundOf } from "../components/strip-of-day";
 import { dayResultQuery, storedResultQuery } from "../features/results/queries";
 import { ResultFacts } from "../features/results/result-facts";
 import { hasRole, useUser } from "../features/session/session";
@@ -50,7 +51,7 @@ export function Component() {
       : i18n.t("A result: how")
     : figures.atEarDb !== null
       ? i18n.t("At the ear {atEar}, outside {outside}: how", {
-          atEar: formatLevel(figures.atEarDb, locale),
+          atEar: formatLevel(figures.atEarDb, locale, figures.atEarBound),
           outside: formatLevel(figures.outsideDb, locale, figures.outsideBound),
         })
       : figures.outsideDb !== null
@@ -172,7 +173,10 @@ function ResultStrip({ result: { figures } }: { result: ResultView }) {
   const level = (db: number) => formatLevel(db, locale);
   return (
     <div className="working-strip">
-      <TableStripScale frame={frame} widthPx={widthPx} />
+      <TableStripScale
+        frame={frame && { ...frame, ...groundOf(figures, frame) }}
+        widthPx={widthPx}
+      />
       <DayStrip figures={figures} variant="card" widthPx={widthPx} k={2.3} />
       <p className="working-strip-words">
         {figures.whileWornDb !== null && (
@@ -183,6 +187,13 @@ function ResultStrip({ result: { figures } }: { result: ResultView }) {
                   task: figures.decidingTaskName,
                 })
               : i18n.t("▲ {level} while worn", { level: level(figures.whileWornDb) })}
+          </span>
+        )}
+        {figures.ownTargetDb !== null && (
+          <span>
+            {i18n.t("target {target}: a stricter target is set for this worker", {
+              target: formatLimit(figures.ownTargetDb, locale),
+            })}
           </span>
         )}
         {figures.atEarActiveDb !== null && (

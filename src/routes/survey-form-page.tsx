@@ -11,7 +11,7 @@ import { surveyQueries } from "../features/surveys/queries";
 import { SurveyForm } from "../features/surveys/survey-form";
 import { paths } from "../paths";
 import { MeasuringWays } from "./measuring-frame";
-import { useSiteChoice } from "./register-frame";
+import { useSiteChoice } from "./site-choice";
 import "../styles/surveys.css";
 
 /** A new survey of a group, half filled in, or the change of one. */

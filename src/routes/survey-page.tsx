@@ -18,7 +18,7 @@ import { riskFactorTitle, stateTitle, strategyTitle } from "../features/surveys/
 import { useLocale } from "../lib/i18n";
 import { paths } from "../paths";
 import { MeasuringWays } from "./measuring-frame";
-import { useSiteChoice } from "./register-frame";
+import { useSiteChoice } from "./site-choice";
 import "../styles/register.css";
 import "../styles/surveys.css";
 

@@ -15,7 +15,7 @@ import { stateTitle, strategyTitle } from "../features/surveys/survey-words";
 import { useLocale } from "../lib/i18n";
 import { paths } from "../paths";
 import { MeasuringWays } from "./measuring-frame";
-import { useSiteChoice } from "./register-frame";
+import { useSiteChoice } from "./site-choice";
 import "../styles/surveys.css";
 
 type Row = z.infer<typeof SurveyRow>;

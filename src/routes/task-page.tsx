@@ -29,7 +29,8 @@ import {
   zoneWord,
 } from "../lib/register-words";
 import { paths } from "../paths";
-import { RuleWays, useSiteChoice } from "./register-frame";
+import { RuleWays } from "./register-frame";
+import { useSiteChoice } from "./site-choice";
 
 /** One task: its noise in force, all its levels with source and reason, and their correction. */
 export function Component() {

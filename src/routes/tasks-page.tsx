@@ -16,7 +16,8 @@ import { useEditParam } from "../lib/edit-param";
 import { useLocale } from "../lib/i18n";
 import { gradeWord, metricWord, zoneWord } from "../lib/register-words";
 import { paths } from "../paths";
-import { RuleWays, SiteChoice, useSiteChoice } from "./register-frame";
+import { RuleWays, SiteChoice } from "./register-frame";
+import { useSiteChoice } from "./site-choice";
 
 /** The tasks of the sites with the noise that is in force for each. */
 export function Component() {

@@ -7,7 +7,8 @@ import { surveyQueries } from "../features/surveys/queries";
 import { RemeasureInterval } from "../features/surveys/remeasure-form";
 import { paths } from "../paths";
 import { MeasuringWays } from "./measuring-frame";
-import { SiteChoice, useSiteChoice } from "./register-frame";
+import { SiteChoice } from "./register-frame";
+import { useSiteChoice } from "./site-choice";
 import "../styles/surveys.css";
 
 /** What needs measuring, and why; each group opens a survey half filled in. */

@@ -235,7 +235,9 @@ function WorkerForm({ worker }: { worker: WorkerView | null }) {
                   name="language"
                   label={i18n.t("Language")}
                   choices={LOCALES.map((one) => ({ value: one, label: LOCALE_NAMES[one] }))}
-                  note={i18n.t("Mails and the worker’s own page speak it.")}
+                  note={i18n.t(
+                    "Mails and the worker’s own page speak it, until the worker chooses another.",
+                  )}
                 />
                 <DateField form={form} name="hiredOn" label={i18n.t("Hired")} />
                 <DateField

@@ -15,6 +15,7 @@ import { type DataColumn, DataTable } from "../components/data-table";
 import {
   AtEarFigure,
   DayStrip,
+  isBoundReason,
   OutsideFigure,
   TableStripGround,
   TableStripScale,
@@ -28,6 +29,7 @@ import { HistoryChart } from "../components/history-chart";
 import { TextButton, TextLink } from "../components/link";
 import { Folio, MarginNote, PageBody, PageHead, Section } from "../components/page";
 import { ProtectorWord } from "../components/protector-word";
+import { groundOf } from "../components/strip-of-day";
 import { AssignForm, assignedUse } from "../features/assignments/assign-form";
 import { AssignmentsTable } from "../features/assignments/assignments-table";
 import { FindingsTable } from "../features/findings/findings-table";
@@ -208,7 +210,7 @@ function LastDay({ worker }: { worker: WorkerView }) {
       <div className="last-day">
         <AtEarFigure figures={last} />
         <span className="last-day-strip">
-          <TableStripScale frame={frame} />
+          <TableStripScale frame={frame && { ...frame, ...groundOf(last, frame) }} />
           <DayStrip figures={last} variant="list" />
         </span>
         <OutsideFigure figures={last} />
@@ -227,7 +229,7 @@ function DayProtector({ day }: { day: DayFigures }) {
   const { i18n } = useLingui();
   const decidedBy = useDecidedBy(day);
   if (day.hasProtector === "no") return <span>{i18n.t("No protector")}</span>;
-  return <ProtectorWord word={day.word} beneath={decidedBy} />;
+  return <ProtectorWord word={day.word} isOpen={isBoundReason(day.reason)} beneath={decidedBy} />;
 }
 
 function Protectors({ worker, today }: { worker: WorkerView; today: string }) {

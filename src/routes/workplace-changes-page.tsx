@@ -16,7 +16,8 @@ import { useEditParam } from "../lib/edit-param";
 import { useLocale } from "../lib/i18n";
 import { paths } from "../paths";
 import { MeasuringWays } from "./measuring-frame";
-import { SiteChoice, useSiteChoice } from "./register-frame";
+import { SiteChoice } from "./register-frame";
+import { useSiteChoice } from "./site-choice";
 import "../styles/surveys.css";
 
 /** What has changed at the sites: it re-opens monitoring, and the protectors chosen on it. */

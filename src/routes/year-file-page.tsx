@@ -1,6 +1,6 @@
 import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
-import { useMemo, useState } from "react";
+import { useEffect, useMemo, useState } from "react";
 import { useSearchParams } from "react-router-dom";
 import { localDateOf } from "../../shared/format/date";
 import { ruleSetVersion } from "../../shared/rule-sets";
@@ -17,9 +17,11 @@ import type { StripFrame } from "../components/strip-of-day";
 import { useUser } from "../features/session/session";
 import { ColumnsTable } from "../features/year-file/columns-table";
 import { GapsTable } from "../features/year-file/gaps-table";
+import { MonthsList } from "../features/year-file/months-list";
 import { MonthsTable } from "../features/year-file/months-table";
 import { downloadYear, yearFileQueries } from "../features/year-file/queries";
 import { useLocale } from "../lib/i18n";
+import { useIsPhone } from "../lib/use-is-phone";
 import { paths } from "../paths";
 import "../styles/findings.css";
 import "../styles/year-file.css";
@@ -29,8 +31,17 @@ export function Component() {
   const { i18n } = useLingui();
   const { sites } = useUser();
   const [search] = useSearchParams();
-  const site = sites.find(({ id }) => id === search.get("site")) ?? sites[0];
-  if (site) return <YearFile site={site} />;
+  const asked = sites.find(({ id }) => id === search.get("site"));
+  const [place, setPlace] = useState(0);
+  const site = asked ?? sites[place] ?? sites[0];
+  // Nobody chose a site: one without a single day is passed over as long as another is left.
+  if (site)
+    return (
+      <YearFile
+        site={site}
+        onNothingThere={!asked && place + 1 < sites.length ? () => setPlace(place + 1) : undefined}
+      />
+    );
   return (
     <PageBody>
       <PageHead title={i18n.t("Year file")} />
@@ -52,7 +63,13 @@ function useYearFrame(ruleSets: readonly { key: string; version: number }[] | un
   }, [ruleSets, i18n, locale]);
 }
 
-function YearFile({ site }: { site: SessionUser["sites"][number] }) {
+function YearFile({
+  site,
+  onNothingThere,
+}: {
+  site: SessionUser["sites"][number];
+  onNothingThere?: () => void;
+}) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const { sites } = useUser();
@@ -63,8 +80,13 @@ function YearFile({ site }: { site: SessionUser["sites"][number] }) {
   const workers = search.get("workers") === "name" ? "name" : "number";
   const yearOfSite = { siteId: site.id, year };
   const gaps = useQuery(yearFileQueries.gaps(yearOfSite));
+  const isNothingThere = gaps.data?.years.length === 0;
+  useEffect(() => {
+    if (isNothingThere) onNothingThere?.();
+  }, [isNothingThere, onNothingThere]);
   const frame = useYearFrame(gaps.data?.ruleSets);
   const [said, setSaid] = useState("");
+  const Months = useIsPhone() ? MonthsList : MonthsTable;
   const [isAsking, setIsAsking] = useState(false);
   const [error, setError] = useState<unknown>(null);
   const years = [...new Set([year, ...(gaps.data?.years ?? [])])].sort((a, b) => b - a);
@@ -165,12 +187,12 @@ function YearFile({ site }: { site: SessionUser["sites"][number] }) {
         <p className="year-said">
           <Status>{said}</Status>
         </p>
-        {gaps.data?.months.length === 0 ? (
+        {gaps.data?.months.length === 0 && !(isNothingThere && onNothingThere) ? (
           <Empty title={i18n.t("No day of {year} is recorded here.", { year: String(year) })}>
             {i18n.t("Choose another year or another site.")}
           </Empty>
         ) : (
-          <MonthsTable year={year} months={gaps.data?.months} frame={frame} today={today} />
+          <Months year={year} months={gaps.data?.months} frame={frame} today={today} />
         )}
         <div className="year-columns">
           <ColumnsTable />

@@ -37,18 +37,20 @@ async function buildBareDay() {
   const crew = await buildCrew({ site, members: [worker], supervisors: [supervisor] });
   const client = await signInAs(officer);
   const date = daysFromToday(-2);
-  await client.post(`/crews/${crew.id}/day`, {
-    date,
-    rows: [
-      {
-        kind: "worked",
-        workerId: worker.id,
-        localStart: "06:00",
-        lengthMin: 480,
-        tasks: [{ taskId: task.id, durationMin: 480 }],
-      },
-    ],
-  });
+  const saveDay = (on: string) =>
+    client.post(`/crews/${crew.id}/day`, {
+      date: on,
+      rows: [
+        {
+          kind: "worked",
+          workerId: worker.id,
+          localStart: "06:00",
+          lengthMin: 480,
+          tasks: [{ taskId: task.id, durationMin: 480 }],
+        },
+      ],
+    });
+  await saveDay(date);
   const findings = () =>
     select<FindingRow>(
       "SELECT id, kind, state, criterion, revision FROM findings WHERE organization_id = $1 ORDER BY kind",
@@ -66,7 +68,18 @@ async function buildBareDay() {
     });
     await recomputeStaleDays(organizationId);
   };
-  return { organizationId, site, worker, supervisor, crew, client, date, findings, newRules };
+  return {
+    organizationId,
+    site,
+    worker,
+    supervisor,
+    crew,
+    client,
+    date,
+    saveDay,
+    findings,
+    newRules,
+  };
 }
 
 const find = (all: FindingRow[], kind: string, ruleSet: string) =>
@@ -114,11 +127,35 @@ describe("a change of the governing rules", () => {
     ]);
   });
 
+  test("the Crew sheet gives an order of earlier rules only until a day is judged by the new ones", async () => {
+    const { crew, client, newRules, saveDay } = await buildBareDay();
+    const order = async () => (await client.get(`/crews/${crew.id}/sheet`)).body.last.rows[0].order;
+    expect(await order()).toMatchObject({ kind: "no-protector", rulesUntil: null });
+    const from = daysFromToday(-1);
+    await newRules(from);
+    expect(await order()).toMatchObject({ kind: "no-protector", rulesUntil: from });
+    await saveDay(from);
+    const judgedAnew = await order();
+    expect(judgedAnew).toMatchObject({ rulesUntil: null });
+    expect(judgedAnew.facts.ruleSetKey).toBe("us-general-industry");
+  });
+
   test("while its rules govern, nothing is said of them", async () => {
     const { client, findings } = await buildBareDay();
     for (const { id } of await findings())
       expect((await client.get(`/findings/${id}`)).body.rulesUntil).toBeNull();
   });
+});
+
+test("a worker reads the own open findings, and nobody else's", async () => {
+  const { organizationId, site, worker } = await buildBareDay();
+  const reader = await buildUser({ organizationId, roles: ["worker"], workerId: worker.id });
+  const stranger = await buildWorker({ site });
+  const other = await buildUser({ organizationId, roles: ["worker"], workerId: stranger.id });
+  const rows = async (who: typeof reader) =>
+    (await (await signInAs(who)).get(`/findings?workerId=${worker.id}`)).body.rows;
+  expect((await rows(reader)).length).toBeGreaterThan(0);
+  expect(await rows(other)).toEqual([]);
 });
 
 test("a worker has one order on the crew sheet, and once it is done the same is not asked again", async () => {

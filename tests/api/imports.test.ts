@@ -389,14 +389,22 @@ describe("how a file may be written", () => {
   });
 
   test.each([
-    ["a picture", Buffer.from([0x89, 0x50, 0x4e, 0x47, 0x0d, 0x0a, 0x1a, 0x0a, 0, 0, 0, 13])],
-    ["a workbook", Buffer.from("PK\u0003\u0004\u0014\u0000\u0006\u0000")],
-    ["an older code page", Buffer.from(`${HEADER}\n1041,x,R\xe4umen`, "latin1")],
-    ["nothing", Buffer.from(" \n")],
-  ])("%s is no CSV", async (_name, content) => {
+    [
+      "a picture",
+      "picture",
+      Buffer.from([0x89, 0x50, 0x4e, 0x47, 0x0d, 0x0a, 0x1a, 0x0a, 0, 0, 0, 13]),
+    ],
+    ["a workbook", "spreadsheet", Buffer.from("PK\u0003\u0004\u0014\u0000\u0006\u0000")],
+    ["an older code page", "other-encoding", Buffer.from(`${HEADER}\n1041,x,R\xe4umen`, "latin1")],
+    ["nothing", "empty", Buffer.from(" \n")],
+  ])("%s is no CSV, and is named", async (_name, found, content) => {
     const { client, site } = await buildShop();
     const answer = await send(client, { siteId: site.id, content });
-    expect([answer.status, answer.body.code]).toEqual([415, "not-csv"]);
+    expect([answer.status, answer.body.code, answer.body.params]).toEqual([
+      415,
+      "not-csv",
+      { found },
+    ]);
   });
 
   test("a broken quote is named by its line", async () => {

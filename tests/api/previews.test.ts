@@ -118,7 +118,7 @@ async function buildCell(site: Site, levelDb = 100) {
 
 interface Change {
   workerId: string;
-  date: string;
+  lastDate: string;
   line: string;
   before: string;
   after: string;
@@ -139,7 +139,12 @@ describe("a preview", () => {
       ({ line }) => line === "without-protection",
     );
     expect(
-      outside.map(({ workerId, date, before: was, after }) => ({ workerId, date, was, after })),
+      outside.map(({ workerId, lastDate, before: was, after }) => ({
+        workerId,
+        date: lastDate,
+        was,
+        after,
+      })),
     ).toEqual(
       expect.arrayContaining(
         [kept, bare].map(({ id }) => ({
@@ -193,7 +198,7 @@ describe("a preview", () => {
           : [
               {
                 workerId: now.worker_id,
-                date: now.date,
+                lastDate: now.date,
                 line,
                 before: then[column] ?? "none",
                 after: now[column] ?? "none",
@@ -203,8 +208,8 @@ describe("a preview", () => {
     });
     const inOrder = (changes: Change[]) =>
       changes
-        .map(({ workerId, date, line, before: from, after }) =>
-          [workerId, date, line, from, after].join(" "),
+        .map(({ workerId, lastDate, line, before: from, after }) =>
+          [workerId, lastDate, line, from, after].join(" "),
         )
         .sort();
     expect(inOrder(preview.body.changes)).toEqual(inOrder(happened as Change[]));
@@ -237,7 +242,7 @@ describe("a preview", () => {
     const { officer, dates } = await buildCell(site);
     const preview = await officer.post(`/sites/${site.id}/settings/preview`, settings);
     expect(preview.body).toMatchObject({ days: 2, workers: 2 });
-    expect(new Set(preview.body.changes.map(({ date }: Change) => date))).toEqual(
+    expect(new Set(preview.body.changes.map(({ lastDate }: Change) => lastDate))).toEqual(
       new Set([dates[1]]),
     );
     expect(await select("SELECT 1 FROM site_settings WHERE site_id = $1", [site.id])).toHaveLength(

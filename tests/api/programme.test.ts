@@ -458,13 +458,29 @@ describe("tasks and areas", () => {
       effectiveFrom: daysFromToday(30),
       levelDb: 70,
     });
-    const answer = await client.post(`/tasks/${task.id}/levels`, {
+    const sent = {
       ...level,
       effectiveFrom: "2020-01-01",
       levelDb: 89.25,
       peak: { levelDb: 131, weighting: "C" },
       octaveBandsDb: [null, 80, 81, 82, 83, 84, 85, 86],
       samplesDb: [88.5, 90],
+    };
+    // With the A-weightings of IEC 61672-1, Table 3, the bands add up to 91.2, two decibels away.
+    for (const path of [`/tasks/${task.id}/levels/preview`, `/tasks/${task.id}/levels`]) {
+      const asked = await client.post(path, sent);
+      expect(asked.status).toBe(422);
+      expect(asked.body.issues).toMatchObject([
+        {
+          path: ["levelDb"],
+          code: "level-off-bands",
+          params: { foundDb: expect.closeTo(91.2, 1), offDb: expect.closeTo(2, 1) },
+        },
+      ]);
+    }
+    const answer = await client.post(`/tasks/${task.id}/levels`, {
+      ...sent,
+      acceptedDoubts: ["level-off-bands"],
     });
     expect(answer.body.level).toMatchObject({
       number: 3,

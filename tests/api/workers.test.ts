@@ -624,3 +624,36 @@ describe("assignments", () => {
     expect(answers.map(({ status }) => status).toSorted()).toEqual([201, 422, 422, 422, 422, 422]);
   });
 });
+
+test("a worker's sign-in follows the language of the record until its owner chose another", async () => {
+  const site = await buildSite();
+  const { organizationId } = site;
+  const officer = await signInAs(await buildUser({ organizationId, roles: ["officer"] }));
+  const languageOf = async ({ id }: { id: string }) =>
+    (await select<{ language: string }>("SELECT language FROM users WHERE id = $1", [id]))[0]
+      ?.language;
+  const withSignIn = async (employeeNumber: string) => {
+    const worker = await buildWorker({ site });
+    const user = await buildUser({ organizationId, roles: ["worker"], workerId: worker.id });
+    const setLanguage = (language: string, revision: number) =>
+      officer.put(
+        `/workers/${worker.id}`,
+        { ...workerBody(site), employeeNumber, language },
+        revision,
+      );
+    return { user, setLanguage };
+  };
+  const follows = await withSignIn("5601");
+  await follows.setLanguage("de", 1);
+  expect(await languageOf(follows.user)).toBe("de");
+
+  const chose = await withSignIn("5602");
+  await (await signInAs(chose.user)).send({
+    method: "put",
+    path: "/me/settings",
+    body: { language: "de" },
+  });
+  await chose.setLanguage("de", 1);
+  await chose.setLanguage("en", 2);
+  expect(await languageOf(chose.user)).toBe("de");
+});

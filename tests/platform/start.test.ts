@@ -1,5 +1,5 @@
 import { chmodSync, existsSync, mkdtempSync, readdirSync, readFileSync, rmSync } from "node:fs";
-import { createServer } from "node:net";
+import { createServer, type Server } from "node:net";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { setTimeout as sleep } from "node:timers/promises";
@@ -15,12 +15,13 @@ const script = [join(projectFolder, "scripts", "start.mjs")];
 let port: number;
 
 function startDemo(...flags: string[]): RunningProcess {
-  const { NODE_ENV, VITEST, ...env } = process.env;
-  return startProcess("start", [...script, ...flags], {
-    ...env,
-    DINWARD_DATA: dataFolder,
-    PORT: String(port),
-  });
+  return startWith({ PORT: String(port) }, ...flags);
+}
+
+function startWith(more: Record<string, string>, ...flags: string[]): RunningProcess {
+  const { NODE_ENV, VITEST, PORT, ...env } = process.env;
+  const environment = { ...env, DINWARD_DATA: dataFolder, ...more };
+  return startProcess("start", [...script, ...flags], environment);
 }
 
 async function waitForLine(demo: RunningProcess, pattern: RegExp): Promise<string> {
@@ -57,11 +58,11 @@ function runningPids(): number[] {
 const readPeople = (): Person[] =>
   JSON.parse(readFileSync(join(dataFolder, "app", "demo-people.json"), "utf8"));
 
-async function signInAsOfficer() {
+async function signInAsOfficer(at = port) {
   const officer = readPeople().find(({ roles }) => roles.includes("officer"));
   if (!officer) throw new Error("the demo has no officer");
   const visitor = new Visitor();
-  const url = `http://127.0.0.1:${port}`;
+  const url = `http://127.0.0.1:${at}`;
   const { url: end } = await visitor.signIn(`${url}/api/auth/sign-in`, officer.sub);
   expect(end.pathname).toBe("/");
   const answer = await visitor.request(`${url}/api/session`);
@@ -165,6 +166,33 @@ describe("npm start", () => {
       `dinward: Port ${port} for the application is in use by another program: choose another with  PORT=… npm start.\n`,
     );
     await new Promise((done) => blocker.close(done));
+  });
+
+  test("remembered ports that other programs took: the next start takes others, keeps them, and who was bound signs in", async () => {
+    const portsFile = join(dataFolder, "ports.json");
+    const readPorts = (): Record<string, number> => JSON.parse(readFileSync(portsFile, "utf8"));
+    const before = readPorts();
+    const blockers = await Promise.all(
+      Object.values(before).map(
+        (taken) =>
+          new Promise<Server>((done) => {
+            const blocker = createServer().listen(taken, "127.0.0.1", () => done(blocker));
+          }),
+      ),
+    );
+    const demo = startWith({});
+    await waitForLine(demo, /Stop with Ctrl-C/);
+    const moved = readPorts();
+    for (const [name, taken] of Object.entries(before)) expect(moved[name], name).not.toBe(taken);
+    expect(demo.output()).toContain(`Dinward is ready:  http://127.0.0.1:${moved.web}`);
+    expect((await signInAsOfficer(moved.web)).id).toBe(userId);
+    await demo.stop();
+
+    await Promise.all(blockers.map((blocker) => new Promise((done) => blocker.close(done))));
+    const next = startWith({});
+    await waitForLine(next, /Stop with Ctrl-C/);
+    expect(readPorts()).toEqual(moved);
+    await next.stop();
   });
 });
 

@@ -7,7 +7,15 @@ import {
   sumReading,
   unaccountedMin,
 } from "../day-sum";
-import { type ExchangeLaw, leastWeight, levelFactor, mostWeight, weightOf } from "../exchange-law";
+import {
+  type ExchangeLaw,
+  isOwnSetting,
+  leastWeight,
+  levelFactor,
+  levelOfWeight,
+  mostWeight,
+  weightOf,
+} from "../exchange-law";
 import type {
   AttenuationMethod,
   DayInput,
@@ -93,7 +101,7 @@ export function evaluateAtEar(
     let activeWornMin = 0;
     let batteryMin: number | null = Number.POSITIVE_INFINITY;
     for (const task of shift.tasks) {
-      const one = seeTask(task, day, ruleSet, law);
+      const one = seeTask(task, day, ruleSet, law, outsideLaw);
       seen.push(one);
       tasks.push(one.atEar);
       if (one.isCredited) creditedTaskIds.add(task.id);
@@ -116,8 +124,8 @@ export function evaluateAtEar(
       const lawHere = atEar.isWorn ? law : bareLaw;
       const least = scale.isByReading
         ? steadyWeight(level.levelDb, lawHere)
-        : leastAtEar(level, lawHere);
-      const most = scale.isByReading ? least : mostAtEar(level, lawHere);
+        : leastAtEar(level, lawHere, outsideLaw);
+      const most = scale.isByReading ? least : mostAtEar(level, lawHere, outsideLaw);
       const worn = atEar.isWorn ? (task.wornPct === null ? null : task.wornPct / 100) : 0;
       const mixed =
         onFactor === null || offFactor === null || powered === null
@@ -265,25 +273,24 @@ class Adder {
   }
 }
 
-/** Under a protector an average of the rule's own exchange rate serves as it stands: its threshold no longer acts. */
-function servesAsItStands({ metric }: TaskLevel, law: ExchangeLaw): boolean {
+/**
+ * Appendix B takes the rating off the rule's own TWA: an average under the rule's own settings serves as it stands, and
+ * its threshold no longer acts. Any other average only bounds that TWA.
+ */
+function servesAsItStands({ metric }: TaskLevel, outsideLaw: ExchangeLaw): boolean {
   return (
-    metric.kind === "lavg" &&
-    !law.isEnergy &&
-    metric.settings.weighting === "A" &&
-    metric.settings.response === "slow" &&
-    metric.settings.exchangeRateDb === law.exchangeRateDb
+    metric.kind === "lavg" && !outsideLaw.isEnergy && isOwnSetting(metric.settings, outsideLaw)
   );
 }
 
-export function leastAtEar(level: TaskLevel, law: ExchangeLaw): number {
-  return servesAsItStands(level, law)
+export function leastAtEar(level: TaskLevel, law: ExchangeLaw, outsideLaw: ExchangeLaw): number {
+  return servesAsItStands(level, outsideLaw)
     ? weightOf(level.levelDb, law)
     : leastWeight(level.metric, level.levelDb, law);
 }
 
-export function mostAtEar(level: TaskLevel, law: ExchangeLaw): number {
-  return servesAsItStands(level, law)
+export function mostAtEar(level: TaskLevel, law: ExchangeLaw, outsideLaw: ExchangeLaw): number {
+  return servesAsItStands(level, outsideLaw)
     ? weightOf(level.levelDb, law)
     : mostWeight(level.metric, level.levelDb, law);
 }
@@ -298,7 +305,13 @@ export function countsAsWorn(task: TimedTask, day: DayInput): boolean {
   return task.protection !== null && (day.mustWear || isInNoise(task, day.site.wearFromDb));
 }
 
-function seeTask(task: TimedTask, day: DayInput, ruleSet: RuleSetVersion, law: ExchangeLaw): Seen {
+function seeTask(
+  task: TimedTask,
+  day: DayInput,
+  ruleSet: RuleSetVersion,
+  law: ExchangeLaw,
+  outsideLaw: ExchangeLaw,
+): Seen {
   const { level, protection } = task;
   const isWorn = countsAsWorn(task, day);
   if (level === null) return { ...bare(task, isWorn, null, "level-missing"), off: null };
@@ -332,6 +345,20 @@ function seeTask(task: TimedTask, day: DayInput, ruleSet: RuleSetVersion, law: E
       : wornShareLevelDb(outsideDb, whileWornDb, task.wornPct, levelFactor(law));
   // A worker who must wear one whatever the level is not told that it is too much for a quiet room.
   const actionDb = isInNoise(task, day.site.wearFromDb) ? en458ActionDb(day, rule) : null;
+  // Where the level only bounds the rule's own, a word stands only if both ends have it.
+  const aboveDb = (weight: number): number =>
+    weight > 0 ? levelOfWeight(weight, law) - outsideDb : Number.NEGATIVE_INFINITY;
+  const leastDb = aboveDb(leastAtEar(level, law, outsideLaw));
+  const mostDb = aboveDb(mostAtEar(level, law, outsideLaw));
+  const isBounded = mostDb - leastDb > BINARY_NOISE_DB;
+  const word = (whileWornDb: number): ProtectorWord | null => {
+    if (!isBounded) return wordOf(whileWornDb, actionDb);
+    const atLeast = wordOf(whileWornDb + leastDb, actionDb);
+    return atLeast === wordOf(whileWornDb + mostDb, actionDb) ? atLeast : null;
+  };
+  const wornWord = word(wornDb);
+  const isOpen = isBounded && actionDb !== null && wornWord === null;
+  const bound = mostDb === Number.POSITIVE_INFINITY ? "only-lower-bound" : "only-upper-bound";
   return {
     task,
     off: weightOf(wornDb - outsideDb, law),
@@ -348,12 +375,15 @@ function seeTask(task: TimedTask, day: DayInput, ruleSet: RuleSetVersion, law: E
       wornActiveDb,
       inTaskDb: inTask(wornDb),
       inTaskActiveDb: wornActiveDb === null ? null : inTask(wornActiveDb),
-      word: wordOf(wornDb, actionDb),
-      wordActive: wornActiveDb === null ? null : wordOf(wornActiveDb, actionDb),
-      reason: task.wornPct === null ? "wearing-unknown" : active.reason,
+      word: wornWord,
+      wordActive: wornActiveDb === null ? null : word(wornActiveDb),
+      reason: task.wornPct === null ? "wearing-unknown" : isOpen ? bound : active.reason,
     },
   };
 }
+
+/** Levels taken through weights and back differ by less than this. */
+const BINARY_NOISE_DB = 1e-9;
 
 function bare(
   task: TimedTask,

@@ -94,6 +94,14 @@ export function OrderActions({
     });
   }
 
+  /** What was typed stays, should it be opened again. */
+  function leave() {
+    setIsRefusing(false);
+    setIsTooShort(false);
+    forget();
+    toCannot();
+  }
+
   return (
     <div ref={place} className="contents">
       <div className="sheet-order">
@@ -131,7 +139,14 @@ export function OrderActions({
         </TextButton>
       )}
       {isRefusing && (
-        <form className="sheet-form" onSubmit={submit} noValidate>
+        <form
+          className="sheet-form"
+          onSubmit={submit}
+          onKeyDown={(event) => {
+            if (event.key === "Escape" && !event.nativeEvent.isComposing && !isBusy) leave();
+          }}
+          noValidate
+        >
           <label htmlFor={`${id}-reason`}>{i18n.t("Why can’t it be done?")}</label>
           <textarea
             id={`${id}-reason`}
@@ -158,15 +173,7 @@ export function OrderActions({
             <Button type="submit" kind="primary" size="supervisor" isBusy={isBusy}>
               {i18n.t("Send to the officer")}
             </Button>
-            <Button
-              size="supervisor"
-              onClick={() => {
-                setIsRefusing(false);
-                setIsTooShort(false);
-                forget();
-                toCannot();
-              }}
-            >
+            <Button size="supervisor" onClick={leave}>
               {i18n.t("Cancel")}
             </Button>
           </div>

@@ -21,6 +21,7 @@ const figures = (facts: Partial<Figures> = {}): Figures => ({
   outsideDb: 102,
   outsideBound: "exact",
   atEarDb: 77,
+  atEarBound: "exact",
   atEarActiveDb: null,
   atEarAsWorkedDb: null,
   uncertaintyDb: 2.2,
@@ -33,6 +34,7 @@ const figures = (facts: Partial<Figures> = {}): Figures => ({
   reason: null,
   ruleSetKey: "uk-2005",
   ruleSetVersion: 1,
+  ownTargetDb: null,
   governingCriteria: [],
   ...facts,
 });
@@ -143,7 +145,30 @@ describe("last shift", () => {
   test("where the rule has no limit at the ear, too little protection stands for over", () => {
     const day = figures({ verdictAtEar: "not-assessed" });
     expect(sheetVerdict({ ...day, word: "too-little" }, false)).toBe("over");
+    const tooLittle = row("Nwosu", { figures: { ...day, word: "too-little" } });
+    expect(lastTitle(i18n, [tooLittle], false)).toBe("One was protected too little");
     expect(sheetVerdict({ ...day, word: "enough" }, false)).toBe("under");
     expect(sheetVerdict({ ...day, word: null }, false)).toBe("not-assessed");
+  });
+
+  test("over a limit without protection, with a protector that is enough, is not protected too little", () => {
+    const day = figures({
+      verdictAtEar: "not-assessed",
+      word: "enough",
+      ruleSetKey: "us-general-industry",
+      governingCriteria: [
+        {
+          criterionId: "limit",
+          verdict: "over",
+          isClear: true,
+          levelDb: 92.3,
+          dosePct: 137,
+          bound: "exact",
+          reason: null,
+        },
+      ],
+    });
+    expect(sheetVerdict(day, false)).toBe("over");
+    expect(lastTitle(i18n, [row("Vang-Loret", { figures: day })], false)).toBe("One was over");
   });
 });

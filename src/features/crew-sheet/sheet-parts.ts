@@ -34,7 +34,10 @@ export function sheetVerdict(figures: DayFigures, hasLimitAtEar: boolean): Verdi
   if (hasLimitAtEar) return figures.verdictAtEar;
   if (figures.word === "too-little" || isOverLimitOutside(figures)) return "over";
   if (figures.hasProtector === "no") return figures.verdictOutside;
-  return figures.word === null ? "not-assessed" : "under";
+  if (figures.word !== null) return "under";
+  return figures.reason === "only-upper-bound" || figures.reason === "only-lower-bound"
+    ? "cant-tell-yet"
+    : "not-assessed";
 }
 
 /** A limit of the governing rule, and not only its action value, is passed without protection. */
@@ -134,6 +137,16 @@ export function lastTitle(
   );
   const countOf = (verdict: Verdict) => verdicts.filter((one) => one === verdict).length;
   const over = countOf("over");
+  // A limit without protection may be passed with a protector that is enough: then nobody was protected too little.
+  const isOver =
+    hasLimitAtEar ||
+    rows.some(
+      ({ figures, isAbsent }) =>
+        figures &&
+        !isAbsent &&
+        figures.word !== "too-little" &&
+        sheetVerdict(figures, hasLimitAtEar) === "over",
+    );
   const open = countOf("cant-tell-yet");
   const values = {
     over,
@@ -145,7 +158,7 @@ export function lastTitle(
   if (over === 0 && open === 0) return i18n.t("Nobody was over");
   const text =
     open === 0
-      ? hasLimitAtEar
+      ? isOver
         ? i18n.t(
             "{over, plural, one {{overNumber} was over} other {{overNumber} were over}}",
             values,

@@ -6,11 +6,10 @@ import { noticedSentence, orderSentence, remedyFigure } from "../../../shared/fi
 import { findingWord } from "../../../shared/findings/words";
 import { formatDate, formatDay } from "../../../shared/format/date";
 import { formatLimit } from "../../../shared/format/level";
-import { withinSentence } from "../../../shared/format/words";
 import type { Locale } from "../../../shared/i18n/index";
 import type { CrewSheetRow } from "../../../shared/schemas/crew";
 import type { DayFigures } from "../../../shared/schemas/finding";
-import { outsideVerdict } from "../../components/day-figures";
+import { outsideVerdict, outsideWords } from "../../components/day-figures";
 import { DropStrip } from "../../components/drop-strip";
 import { LevelFigure } from "../../components/level-figure";
 import { protectorWordText } from "../../components/protector-word";
@@ -42,6 +41,7 @@ function Figures({
     <div className="sheet-figures">
       <LevelFigure
         levelDb={figures.atEarDb}
+        bound={figures.atEarBound}
         uncertaintyDb={isFlagged ? strip.atEarUDb : null}
         isStrong
       />
@@ -51,7 +51,7 @@ function Figures({
         variant="list"
         widthPx={STRIP_PX}
         k={isFlagged ? 1.5 : 1.15}
-        outsideWords={withinSentence(outsideVerdict(i18n, locale, figures).words, locale)}
+        outsideWords={outsideWords(i18n, locale, figures)}
       />
       <LevelFigure
         levelDb={figures.outsideDb}
@@ -89,7 +89,8 @@ function RowWord({
     if (verdict === "cant-tell-yet" || verdict === "not-assessed")
       return <Verdict verdict={verdict} />;
   }
-  if (order && (part === "expected" || (figures && asksAboutDay(row)))) return <b>{findingWord(i18n, order.kind)}</b>;
+  if (order && (part === "expected" || (figures && asksAboutDay(row))))
+    return <b>{findingWord(i18n, order.kind)}</b>;
   if (!figures) return <Verdict verdict="not-assessed" />;
   if (figures.word !== null) {
     const isFault = figures.word === "too-little" || figures.word === "too-much";

@@ -27,6 +27,7 @@ describe("minutes", () => {
     ["NaN", "en", "not-a-duration"],
     ["1e400", "en", "not-a-duration"],
     ["-5", "en", "negative"],
+    ["999999", "en", "more-than-a-day"],
   ] as const)("%s in %s is %s, and stays as it was typed", (text, locale, fault) => {
     expect(parseCell(minutes, text, locale, words)).toMatchObject({ value: null, text, fault });
   });

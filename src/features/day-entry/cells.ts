@@ -15,6 +15,8 @@ export type CellValue = string | number | Unaccounted | ReadingValue;
 /** `filled`: from roster, nominal day or last shift, and nobody has looked at it. */
 export type CellMark = "filled" | "typed" | "saved";
 
+const DAY_MIN = 1440;
+
 export type CellFault =
   | "ambiguous"
   | "not-a-duration"
@@ -25,6 +27,7 @@ export type CellFault =
   | "not-unaccounted"
   | "minutes-follow"
   | "negative"
+  | "more-than-a-day"
   | "level-out-of-range";
 
 export interface Cell {
@@ -84,7 +87,10 @@ function read(id: CellId, typed: string, locale: Locale, words: UnaccountedWords
     return share.value >= 0 && share.value <= 100 ? share : { fault: "not-a-share" };
   }
   const minutes = settle(parseDuration(typed, locale), "not-a-duration");
-  return "value" in minutes && minutes.value < 0 ? { fault: "negative" } : minutes;
+  if (!("value" in minutes)) return minutes;
+  if (minutes.value < 0) return { fault: "negative" };
+  // A length out of range is said of the shift, with what it may be.
+  return id !== "length" && minutes.value > DAY_MIN ? { fault: "more-than-a-day" } : minutes;
 }
 
 function settle(

@@ -119,7 +119,8 @@ export function ConflictDialog({
   }
   const chosen = mergeRow(row, theirs, taken);
   const atEar = (one: RowDraft) => evaluate(one).summary;
-  const figure = (one: RowDraft) => formatLevel(atEar(one)?.atEarDb ?? null, locale);
+  const figure = (one: RowDraft) =>
+    formatLevel(atEar(one)?.atEarDb ?? null, locale, atEar(one)?.atEarBound);
   const text = (value: Difference["yours"]) =>
     (typeof value === "string" ? value : editText(value, locale, words)) || "–";
   const chosenSummary = atEar(chosen);
@@ -267,7 +268,9 @@ export function ConfirmDialog({
                 )}
               </td>
               <td>
-                <span className="mono">{formatLevel(summary?.atEarDb ?? null, locale)}</span>{" "}
+                <span className="mono">
+                  {formatLevel(summary?.atEarDb ?? null, locale, summary?.atEarBound)}
+                </span>{" "}
                 {summary && <Verdict verdict={summary.verdictAtEar} isQuiet />}
               </td>
             </tr>

@@ -65,6 +65,12 @@ test.each([
   expect(evaluate(entries).problems.map((problem) => problem.kind)).toContain(kind);
 });
 
+test("a shift of no length is said to be that, and nothing else", () => {
+  expect(evaluate({ length: "0" }).problems.map(({ kind }) => kind)).toEqual([
+    "length-out-of-range",
+  ]);
+});
+
 describe("where the clock was set", () => {
   test("forward, a time that never came is refused", () => {
     const found = evaluate({ start: "1:30" }, {}, { date: "2026-03-29" });

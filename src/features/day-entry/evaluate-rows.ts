@@ -357,7 +357,7 @@ function problemsOf(
     } else if (lengthMin === WHOLE_DAY_MIN && !row.confirmsWholeDay) {
       problems.push({ kind: "whole-day", cell: "length" });
     }
-    if (sumMin > lengthMin + SAME_MIN) {
+    if (lengthMin > 0 && lengthMin <= WHOLE_DAY_MIN && sumMin > lengthMin + SAME_MIN) {
       const suspect = suspectTask(row, gridRow, times, tasks);
       problems.push({
         kind: "does-not-add-up",

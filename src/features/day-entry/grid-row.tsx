@@ -3,11 +3,16 @@ import { type InputHTMLAttributes, memo, type ReactNode } from "react";
 import { formatMinutes } from "../../../shared/format/duration";
 import { formatLevel, formatLevelChange, formatLimit } from "../../../shared/format/level";
 import { editNumber } from "../../../shared/format/number";
-import { withinSentence } from "../../../shared/format/words";
 import type { Locale } from "../../../shared/i18n/index";
 import type { DayFigures } from "../../../shared/schemas/finding";
 import type { GridRow as GridRowView } from "../../../shared/schemas/shift";
-import { AtEarFigure, OutsideFigure, outsideVerdict } from "../../components/day-figures";
+import {
+  AtEarFigure,
+  isBoundReason,
+  OutsideFigure,
+  outsideVerdict,
+  outsideWords,
+} from "../../components/day-figures";
 import { DropStrip, type DropStripProps, StripGround } from "../../components/drop-strip";
 import { TextButton } from "../../components/link";
 import { ProtectorWord } from "../../components/protector-word";
@@ -209,6 +214,9 @@ function Filled({ isFilled, children }: { isFilled: boolean; children: ReactNode
   );
 }
 
+/** With its blank a sum from here on is wider than the column at full size. */
+const FIVE_FIGURES_MIN = 1000;
+
 function CellContent({
   column,
   cell,
@@ -224,7 +232,15 @@ function CellContent({
       return <UnaccountedContent found={found} cell={cell} isFilled={isFilled} locale={locale} />;
     case "sum":
       return (
-        <span className={found.sumMin === 0 ? "is-zero" : "sum"}>
+        <span
+          className={
+            found.sumMin === 0
+              ? "is-zero"
+              : found.sumMin < FIVE_FIGURES_MIN
+                ? "sum"
+                : "sum is-small"
+          }
+        >
           {formatMinutes(found.sumMin, locale)}
         </span>
       );
@@ -324,10 +340,18 @@ function ProtectorContent({ found }: { found: RowEvaluation }) {
     <span className="two-lines">
       <span className="clip">{first.name}</span>
       {others.map(({ name, taskNames }) => (
-        <span key={name} className="under clip">
-          {name}, {taskNames.join(", ")}
-        </span>
+        <ForTasks key={name} name={name} tasks={taskNames.join(", ")} />
       ))}
+    </span>
+  );
+}
+
+/** The task first: it is what tells it from the protector above, and narrow columns cut the end. */
+function ForTasks({ name, tasks }: { name: string; tasks: string }) {
+  const words = `${tasks}: ${name}`;
+  return (
+    <span className="under clip" title={words}>
+      {words}
     </span>
   );
 }
@@ -357,8 +381,7 @@ function WornContent({ found, cell, isFilled = false, locale }: ContentProps) {
   return (
     <span className="two-lines">
       <Filled isFilled={isFilled}>{editNumber(shared, locale)}</Filled>
-      {shared < 100 && <span className="under">{i18n.t("whole shift")}</span>}
-      {shared >= 100 && <span className="sr-only">{i18n.t("whole shift")}</span>}
+      <span className={shared < 100 ? "under clip" : "sr-only"}>{i18n.t("all tasks")}</span>
     </span>
   );
 }
@@ -376,6 +399,7 @@ const NOTHING: Omit<DropStripProps, "limits" | "targetBand" | "hasProtector"> = 
   outsideUDb: null,
   outsideBound: "exact",
   atEarDb: null,
+  atEarBound: "exact",
   atEarUDb: null,
   atEarActiveDb: null,
   atEarAsWorkedDb: null,
@@ -404,7 +428,7 @@ function ResultCells(props: GridRowProps & { rowSpan: number | undefined; at: nu
     : figures
       ? stripLabel(i18n, {
           ...strip,
-          outsideWords: withinSentence(outsideVerdict(i18n, locale, figures).words, locale),
+          outsideWords: outsideWords(i18n, locale, figures),
         })
       : found.hasOtherShift
         ? i18n.t("Worked out with the other shift of that day, when it is saved.")
@@ -480,6 +504,7 @@ function Word({ found, frame }: GridRowProps) {
   return (
     <ProtectorWord
       word={summary.word}
+      isOpen={isBoundReason(summary.reason)}
       beneath={
         frame.isWide && summary.decidingTaskName && summary.whileWornDb !== null ? (
           <>

@@ -135,7 +135,7 @@ export function RowForm(props: RowFormProps) {
             start: localStart,
             length: formatDuration(lengthMin, locale),
           })}{" "}
-          <TextLink to={paths.shift(shiftId)}>{i18n.t("Open")}</TextLink>
+          <TextLink to={paths.shift(shiftId)}>{i18n.t("Open it")}</TextLink>
         </p>
       ))}
       {row.base && (

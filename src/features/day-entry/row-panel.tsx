@@ -4,7 +4,7 @@ import { asReason, reasonText } from "../../../shared/findings/reasons";
 import { formatDose } from "../../../shared/format/dose";
 import { formatLevel, formatUncertainty } from "../../../shared/format/level";
 import type { GridRow } from "../../../shared/schemas/shift";
-import { outsideVerdict } from "../../components/day-figures";
+import { outsideWords } from "../../components/day-figures";
 import { ShareBar } from "../../components/share-bar";
 import { useLocale } from "../../lib/i18n";
 import type { RowEvaluation } from "./evaluate-rows";
@@ -106,17 +106,18 @@ export function WorkedOut({
       {shares.length > 0 && <ShareBar shares={shares} />}
       {!frame.isWide && <Figures found={found} frame={frame} />}
       <p className="row-words">
-        {isWorn && summary.atEarDb !== null && summary.atEarActiveDb === null && (
+        {frame.isWide && isWorn && summary.atEarDb !== null && summary.atEarActiveDb === null && (
           <>
-            {i18n.t("At the ear")} <b className="mono">{level(summary.atEarDb)}</b>
+            {i18n.t("At the ear")}{" "}
+            <b className="mono">{formatLevel(summary.atEarDb, locale, summary.atEarBound)}</b>
             {". "}
           </>
         )}
         {isWorn && summary.atEarDb !== null && summary.atEarActiveDb !== null && (
           <>
             {i18n.t("At the ear with the active part off")}{" "}
-            <b className="mono">{level(summary.atEarDb)}</b>, {i18n.t("with it on")}{" "}
-            <b className="mono">{level(summary.atEarActiveDb)}</b>
+            <b className="mono">{formatLevel(summary.atEarDb, locale, summary.atEarBound)}</b>,{" "}
+            {i18n.t("with it on")} <b className="mono">{level(summary.atEarActiveDb)}</b>
             {". "}
           </>
         )}
@@ -148,13 +149,19 @@ function Figures({ found, frame }: { found: RowEvaluation; frame: GridFrame }) {
   const figures = previewFigures(found, frame);
   if (!figures) return null;
   const uncertainty = formatUncertainty(figures.uncertaintyDb, locale);
+  const plusMinus = uncertainty !== "" && (
+    <>
+      {" "}
+      <span className="figure-u">{uncertainty}</span>
+    </>
+  );
   return (
     <p className="row-words">
-      {i18n.t("At the ear")} <b className="mono">{formatLevel(figures.atEarDb, locale)}</b>{" "}
-      <span className="figure-u">{uncertainty}</span>, {i18n.t("without protection")}{" "}
-      <b className="mono">{formatLevel(figures.outsideDb, locale, figures.outsideBound)}</b>{" "}
-      <span className="figure-u">{uncertainty}</span> ({outsideVerdict(i18n, locale, figures).words}
-      ).
+      {i18n.t("At the ear")}{" "}
+      <b className="mono">{formatLevel(figures.atEarDb, locale, figures.atEarBound)}</b>
+      {figures.atEarBound === "exact" && plusMinus}, {i18n.t("without protection")}{" "}
+      <b className="mono">{formatLevel(figures.outsideDb, locale, figures.outsideBound)}</b>
+      {figures.outsideBound === "exact" && plusMinus} ({outsideWords(i18n, locale, figures)}).
     </p>
   );
 }

@@ -67,6 +67,8 @@ export function faultText(i18n: I18n, fault: CellFault): string {
       return i18n.t(
         "These minutes follow from the length and the tasks. Write what they were: “quiet 70”, “like the rest” or “unknown”.",
       );
+    case "more-than-a-day":
+      return i18n.t("That is more than a day has: at most 1440 min, or 24 h.");
     case "negative":
       return i18n.t("It can’t be less than nothing.");
     case "level-out-of-range":
@@ -136,10 +138,15 @@ export function problemWords(
       };
     case "does-not-add-up": {
       const { sumMin, lengthMin, overMin, longest } = problem;
-      const mend = i18n.t("Take {over} off a task, or make the shift {length}.", {
-        over: formatMinutes(overMin, locale),
-        length: formatDuration(sumMin, locale),
-      });
+      const over = formatMinutes(overMin, locale);
+      // No shift is longer than a day, so that is no way to mend it.
+      const mend =
+        sumMin > 1440
+          ? i18n.t("Take {over} min off the tasks.", { over })
+          : i18n.t("Take {over} off a task, or make the shift {length}.", {
+              over,
+              length: formatDuration(sumMin, locale),
+            });
       const usual = longest
         ? i18n.t("{task} has never been above {longest} for this worker.", {
             task: longest.taskName,

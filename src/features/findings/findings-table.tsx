@@ -1,7 +1,10 @@
+import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { type ReactNode, useMemo } from "react";
 import { findingStateWord, findingWord } from "../../../shared/findings/words";
 import { formatShortDate } from "../../../shared/format/date";
+import { formatNumber } from "../../../shared/format/number";
+import type { Locale } from "../../../shared/i18n/index";
 import type { FindingRow } from "../../../shared/schemas/finding";
 import { type DataColumn, DataTable, type DataTableProps } from "../../components/data-table";
 import {
@@ -25,6 +28,27 @@ const overBy = ({ figures }: FindingRow): number =>
     : { over: 2000, "cant-tell-yet": 1000, under: 0, "not-assessed": -1000 }[figures.verdictAtEar] +
       figures.atEarDb;
 
+/** After every date that is one. */
+const NEVER = "9999-12-31";
+
+const isOverdue = ({ dueOn, state }: FindingRow, today: string): boolean =>
+  dueOn !== null && dueOn < today && state !== "done" && state !== "closed";
+
+/** A group's days are counted worker by worker, and say so. */
+function daysSince(i18n: I18n, locale: Locale, finding: FindingRow): string {
+  const words = {
+    days: finding.daysCount,
+    figure: formatNumber(finding.daysCount, 0, locale),
+    date: formatShortDate(finding.firstDate, locale),
+  };
+  return finding.worker
+    ? i18n.t("{days, plural, one {# day} other {{figure} days}} since {date}", words)
+    : i18n.t(
+        "{days, plural, one {# day} other {{figure} days}} of {workers, plural, one {# worker} other {# workers}} since {date}",
+        { ...words, workers: finding.workersCount },
+      );
+}
+
 export function FindingsTable({
   rows,
   hidesWorker = false,
@@ -42,13 +66,12 @@ export function FindingsTable({
   const locale = useLocale();
   const days = useMemo(() => rows.map(({ figures }) => figures), [rows]);
   const frame = useTableFrame(days);
-  const sorted = useMemo(
-    () =>
-      rows.toSorted(
-        (a, b) =>
-          Number(a.state === "closed") - Number(b.state === "closed") || overBy(b) - overBy(a),
-      ),
-    [rows],
+  const sorted = rows.toSorted(
+    (a, b) =>
+      Number(a.state === "closed") - Number(b.state === "closed") ||
+      Number(isOverdue(b, todayAt(b.siteId))) - Number(isOverdue(a, todayAt(a.siteId))) ||
+      (a.dueOn ?? NEVER).localeCompare(b.dueOn ?? NEVER) ||
+      overBy(b) - overBy(a),
   );
   const columns: DataColumn<FindingRow>[] = [
     {
@@ -111,11 +134,7 @@ export function FindingsTable({
       cell: (finding) => (
         <FindingWords
           finding={finding}
-          more={
-            finding.daysCount > 1
-              ? `; ${i18n.t("{count, plural, other {# days since {date}}}", { count: finding.daysCount, date: formatShortDate(finding.firstDate, locale) })}`
-              : ""
-          }
+          more={finding.daysCount > 1 ? `; ${daysSince(i18n, locale, finding)}` : ""}
         />
       ),
     },
@@ -123,7 +142,7 @@ export function FindingsTable({
   return (
     <div className="findings-table stacked-table">
       <DataTable
-        caption={i18n.t("Findings, worst first")}
+        caption={i18n.t("Findings, overdue and soonest due first")}
         columns={columns}
         rows={sorted}
         rowKey={({ id }) => id}

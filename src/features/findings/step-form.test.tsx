@@ -24,6 +24,7 @@ const view = (overrides: Partial<FindingView> = {}): FindingView =>
     firstDate: "2026-11-30",
     lastDate: "2026-11-30",
     daysCount: 1,
+    workersCount: 1,
     dueOn: "2026-12-01",
     rulesUntil: null,
     siteId: id,
@@ -68,6 +69,18 @@ test("the steps are those of the state and of what the reader may do", () => {
     "comment",
   ]);
   expect(stepsFor(view({ can: { handle: false, markDone: false, comment: false } }))).toEqual([]);
+});
+
+test("Escape leaves the form, and the focus is back on the step", async () => {
+  show(view());
+  const user = userEvent.setup();
+  await user.click(screen.getByRole("button", { name: "Can’t, because…" }));
+  await user.click(screen.getByRole("textbox", { name: "Can’t, because" }));
+  await user.keyboard("{Escape}");
+  expect(screen.queryByRole("textbox")).toBeNull();
+  await waitFor(() =>
+    expect(document.activeElement).toBe(screen.getByRole("button", { name: "Can’t, because…" })),
+  );
 });
 
 test("closing needs a reason", async () => {

@@ -1,5 +1,5 @@
 import { useLingui } from "@lingui/react";
-import { useRef, useState } from "react";
+import { type KeyboardEvent, useRef, useState } from "react";
 import { z } from "zod";
 import { findingStateWord } from "../../../shared/findings/words";
 import { formatShortDate } from "../../../shared/format/date";
@@ -51,6 +51,12 @@ export function stepsFor(finding: Pick<FindingView, "state" | "can">): StepKind[
       !(kind === "take-in-hand" && finding.state === "in-hand"),
   );
 }
+
+/** Escape leaves a step's form as its button does; in a dialog above it, it closes the dialog alone. */
+const leaveOnEscape = (onCancel: () => void) => (event: KeyboardEvent<HTMLFormElement>) => {
+  const isInDialog = event.target instanceof Element && event.target.closest("dialog") !== null;
+  if (event.key === "Escape" && !event.nativeEvent.isComposing && !isInDialog) onCancel();
+};
 
 /** What a person does about a finding, chosen first, then said. */
 export function StepForm({ finding }: { finding: FindingView }) {
@@ -176,6 +182,7 @@ function DueForm(props: StepProps) {
   return (
     <Form
       aria-label={props.label}
+      onKeyDown={leaveOnEscape(props.onCancel)}
       onSubmit={form.handleSubmit(({ dueOn }) =>
         send.submit(
           { kind: "take-in-hand", dueOn },
@@ -212,6 +219,7 @@ function TextForm(props: StepProps & { kind: Exclude<StepKind, "take-in-hand"> }
   return (
     <Form
       aria-label={props.label}
+      onKeyDown={leaveOnEscape(props.onCancel)}
       onSubmit={form.handleSubmit(({ text }) =>
         send.submit({ kind, text }, props.finding.revision, showIssuesOn(form, i18n)),
       )}

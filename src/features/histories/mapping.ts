@@ -44,7 +44,7 @@ export function draftOf(head: HistoryHead, mapping: HistoryMapping | null): Mapp
   const [startDate = null, startTime = ""] = mapping?.startsAt?.split(/[T ]/) ?? [];
   return {
     sheet: mapping?.sheet ?? null,
-    delimiter: mapping?.delimiter ?? ",",
+    delimiter: mapping?.delimiter ?? head.delimiter ?? ",",
     skipLines: mapping?.skipLines ?? 1,
     decimal: mapping?.decimal ?? ".",
     dateOrder: mapping?.dateOrder ?? "ymd",

@@ -1,6 +1,6 @@
 import type { I18n } from "@lingui/core";
-import type { ImportIssue, ImportKind, ImportReport } from "../../../shared/schemas/import";
 import { issueText } from "../../../shared/problems/issue-text";
+import type { ImportIssue, ImportKind, ImportReport } from "../../../shared/schemas/import";
 
 export function importKindWord(i18n: I18n, kind: ImportKind): string {
   switch (kind) {

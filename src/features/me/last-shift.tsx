@@ -16,7 +16,12 @@ export function lastShiftSentence(i18n: I18n, locale: Locale, day: OwnDay): stri
   const { atEarDb, outsideDb, uncertaintyDb, limit } = day;
   const values = {
     day: formatDay(day.date, locale),
-    level: formatWholeLevel(atEarDb, locale),
+    level:
+      day.atEarBound === "lower"
+        ? i18n.t("at least {level}", { level: formatWholeLevel(atEarDb, locale) })
+        : day.atEarBound === "upper"
+          ? i18n.t("at most {level}", { level: formatWholeLevel(atEarDb, locale) })
+          : formatWholeLevel(atEarDb, locale),
     around:
       day.outsideBound === "lower"
         ? i18n.t("at least {level}", { level: formatWholeLevel(outsideDb, locale) })

@@ -107,7 +107,10 @@ export function MyHistory({
               {days.slice(0, rowCount).map((day) => (
                 <tr key={day.date}>
                   <th scope="row">{formatShortDate(day.date, locale)}</th>
-                  <td className="is-figure">{formatWholeLevel(day.atEarDb, locale)}</td>
+                  <td className="is-figure">
+                    {day.atEarDb !== null && BOUND_SIGNS[day.atEarBound]}
+                    {formatWholeLevel(day.atEarDb, locale)}
+                  </td>
                   <td className="is-figure">
                     {day.outsideDb !== null && BOUND_SIGNS[day.outsideBound]}
                     {formatWholeLevel(day.outsideDb, locale)}

@@ -19,6 +19,7 @@ export function ownFrame(i18n: I18n, locale: Locale, { limit, ...day }: OwnDay):
       : [],
     // The arrow draws no target.
     targetBand: null,
+    targetLabel: null,
     hasLimitAtEar: limit?.isAtEar ?? false,
   };
 }

@@ -1,7 +1,9 @@
 import { describe, expect, test } from "vitest";
 import { testI18n } from "../../lib/test-i18n";
+import { lastShiftSentence } from "./last-shift";
+import { ownFrame } from "./own-frame";
 import type { OwnProtector } from "./own-protectors";
-import type { OwnDay } from "./queries";
+import type { OwnDay, OwnFinding } from "./queries";
 import { weeksOf } from "./weeks";
 import { whatToDo } from "./what-to-do";
 
@@ -12,6 +14,7 @@ const day = (facts: Partial<OwnDay> = {}): OwnDay => ({
   outsideDb: 96.4,
   outsideBound: "exact",
   atEarDb: 79.2,
+  atEarBound: "exact",
   atEarActiveDb: null,
   atEarAsWorkedDb: null,
   uncertaintyDb: 2.1,
@@ -24,6 +27,7 @@ const day = (facts: Partial<OwnDay> = {}): OwnDay => ({
   reason: null,
   ruleSetKey: "uk-2005",
   ruleSetVersion: 1,
+  ownTargetDb: null,
   governingCriteria: [],
   shiftMin: 480,
   isStale: false,
@@ -49,8 +53,31 @@ const teardown = protector({
   useName: "Teardown",
   innerName: "Sedge band",
 });
-const say = (lastDay: OwnDay | null, protectors: OwnProtector[]) =>
-  whatToDo(testI18n(), "en", { lastDay, protectors, assignments: protectors });
+const finding = (facts: Partial<OwnFinding> = {}): OwnFinding => ({
+  id: "00000000-0000-4000-8000-000000000003",
+  kind: "protects-too-little",
+  state: "new",
+  criterion: "",
+  useKey: "",
+  facts: {},
+  firstDate: "2026-11-30",
+  lastDate: "2026-11-30",
+  daysCount: 1,
+  workersCount: 1,
+  dueOn: null,
+  rulesUntil: null,
+  siteId: "00000000-0000-4000-8000-000000000009",
+  worker: null,
+  subjectName: null,
+  crewName: null,
+  figures: null,
+  ownerName: null,
+  revision: 1,
+  can: { handle: false, markDone: false, comment: false },
+  ...facts,
+});
+const say = (lastDay: OwnDay | null, protectors: OwnProtector[], findings: OwnFinding[] = []) =>
+  whatToDo(testI18n(), "en", { lastDay, protectors, findings });
 
 describe("what to do", () => {
   test("nothing is wrong: what is worn, and where it changes", () => {
@@ -61,31 +88,73 @@ describe("what to do", () => {
     expect(say(day(), [protector()])).toEqual(["Wear your Fenmuff in noise."]);
   });
 
-  test("a protector that is too little comes before everything else", () => {
-    const [order] = say(day({ word: "too-little", verdictAtEar: "over" }), [protector()]);
-    expect(order).toBe(
-      "Fenmuff protects too little for your work. Ask your supervisor what to do before you work in noise again.",
-    );
+  const tooLittle = finding({
+    facts: {
+      protector: "Fenmuff",
+      remedy: { names: ["Alder foam"], modelIds: ["a"], isHeld: false, inTasks: [] },
+    },
+  });
+  const peak = finding({
+    kind: "peak-or-ceiling",
+    facts: { what: "peak", levelDb: 141.6, valueDb: 140 },
   });
 
-  test("once somebody has given another protector, the old day’s fault is no order any more", () => {
-    const given = protector({ innerName: "Mallow foam", fromDate: "2026-12-01" });
-    expect(say(day({ word: "too-little" }), [given])).toEqual(["Wear your Mallow foam in noise."]);
+  test("an open finding comes before everything else, with what to wear instead", () => {
+    expect(say(day({ word: "too-little" }), [protector()], [tooLittle])).toEqual([
+      "Fenmuff protects too little for your work. Ask your supervisor for Alder foam.",
+    ]);
   });
 
-  test("a peak over its limit is told, by the kind that came with the day", () => {
-    expect(say(day({ kindsOver: ["action", "peak"] }), [protector()])[0]).toMatch(
-      /^There was a very loud bang or noise\./,
-    );
+  test("every open finding is told, the most serious first; what is worn stays said where it is not in doubt", () => {
+    expect(say(day(), [protector()], [peak, tooLittle])).toEqual([
+      expect.stringMatching(/^Fenmuff protects too little/),
+      expect.stringMatching(/^There was a bang of about 142 decibels/),
+    ]);
+    expect(say(day(), [protector()], [peak])).toEqual([
+      expect.stringMatching(/^There was a bang of about 142 decibels/),
+      "Wear your Fenmuff in noise.",
+    ]);
+  });
+
+  test("what is done, answered by another protector or rests on earlier rules asks for nothing", () => {
+    const worn = ["Wear your Fenmuff in noise."];
+    expect(say(day(), [protector()], [finding({ state: "done" })])).toEqual(worn);
+    const given = protector({ fromDate: "2026-12-01" });
+    expect(say(day(), [given], [tooLittle])).toEqual(worn);
+    const earlier = finding({ kind: "dual-protection", rulesUntil: "2026-10-29" });
+    expect(say(day(), [protector()], [earlier])).toEqual(worn);
+    expect(say(day({ date: "2026-10-20" }), [protector()], [earlier])[0]).toMatch(/two protectors/);
+    expect(say(day(), [protector()], [finding({ kind: "reading-missing" })])).toEqual(worn);
   });
 
   test("in noise with nothing assigned; without noise nothing is needed", () => {
-    const bare = { hasProtector: "no", word: null } as const;
-    expect(say(day(bare), [])[0]).toMatch(/^You work in noise and have no protector yet\./);
-    expect(say(day({ ...bare, verdictOutside: "under" }), [])).toEqual([
+    expect(say(day(), [], [finding({ kind: "no-protector" })])[0]).toMatch(
+      /^You work in noise and have no protector yet\./,
+    );
+    expect(say(day({ hasProtector: "no", word: null, verdictOutside: "under" }), [])).toEqual([
       "You need no protector for your work so far.",
     ]);
     expect(say(null, [])[0]).toBe("Nothing to do yet.");
+  });
+});
+
+describe("the last shift in a sentence", () => {
+  const usDay = { limit: { levelDb: 90, isAtEar: false }, verdictAtEar: "not-assessed" } as const;
+  const sentence = (facts: Partial<OwnDay>) => lastShiftSentence(testI18n(), "en", day(facts));
+
+  test("after a bang over its limit nothing says that the protector was enough", () => {
+    expect(sentence({ ...usDay, word: "enough" })).toMatch(/Your protector was enough\.$/);
+    expect(sentence({ ...usDay, word: "enough", kindsOver: ["peak"] })).toMatch(
+      /reached your ear\.$/,
+    );
+  });
+
+  test("a lower bound says at least; a limit for the noise around is no limit at the ear", () => {
+    expect(sentence({ ...usDay, atEarDb: null, outsideDb: 92.3, outsideBound: "lower" })).toMatch(
+      /it was \*at least 92 decibels\* around you/,
+    );
+    expect(ownFrame(testI18n(), "en", day(usDay)).limits).toEqual([]);
+    expect(ownFrame(testI18n(), "en", day()).limits).toHaveLength(1);
   });
 });
 

@@ -1,6 +1,6 @@
 import type { I18n } from "@lingui/core";
 import { protectorNames } from "../../../shared/findings/facts";
-import { ORDER_KINDS, foldOrders } from "../../../shared/findings/orders";
+import { foldOrders, ORDER_KINDS } from "../../../shared/findings/orders";
 import { workerSentence } from "../../../shared/findings/worker-sentence";
 import type { Locale } from "../../../shared/i18n/index";
 import type { FindingKind } from "../../../shared/schemas/finding";
@@ -58,26 +58,34 @@ function wear(i18n: I18n, one: OwnProtector): string {
     : i18n.t("In {use} wear your {protector}.", { use: one.useName, protector });
 }
 
-/** What to do, in the order of its weight: the first sentence is the page's title. */
-export function whatToDo(i18n: I18n, locale: Locale, known: Known): [string, ...string[]] {
-  const { lastDay, protectors } = known;
-  const sentences = asked(known).map(({ kind, facts }) =>
-    workerSentence(i18n, locale, kind, facts),
-  );
-  const [first, ...further] = new Set(sentences);
-  if (first !== undefined) return [first, ...further];
+/** What is worn where, as long as nothing asks for a change. */
+function whatToWear(i18n: I18n, protectors: readonly OwnProtector[]): string[] {
   const [main, ...others] = protectors;
-  if (main) {
-    const more = others.map((one) =>
+  if (!main) return [];
+  return [
+    wear(i18n, main),
+    ...others.map((one) =>
       one.useName === null
         ? i18n.t("In any other noise it is your {protector}.", { protector: nameOf(i18n, one) })
         : i18n.t("In {use} change to your {protector}.", {
             use: one.useName,
             protector: nameOf(i18n, one),
           }),
-    );
-    return [wear(i18n, main), ...more];
-  }
+    ),
+  ];
+}
+
+/** What to do, in the order of its weight: the first sentence is the page's title. */
+export function whatToDo(i18n: I18n, locale: Locale, known: Known): [string, ...string[]] {
+  const { lastDay, protectors } = known;
+  const open = asked(known);
+  const isProtectorInDoubt = open.some(({ kind }) => ABOUT_PROTECTOR.has(kind));
+  const sentences = [
+    ...open.map(({ kind, facts }) => workerSentence(i18n, locale, kind, facts)),
+    ...(isProtectorInDoubt ? [] : whatToWear(i18n, protectors)),
+  ];
+  const [first, ...further] = new Set(sentences);
+  if (first !== undefined) return [first, ...further];
   if (!lastDay)
     return [
       i18n.t("Nothing to do yet."),

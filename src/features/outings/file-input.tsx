@@ -1,10 +1,10 @@
 import { useLingui } from "@lingui/react";
 import { useState } from "react";
+import { issueText } from "../../../shared/problems/issue-text";
 import type { FileView } from "../../../shared/schemas/outing";
 import { Field } from "../../components/form";
 import { TextButton } from "../../components/link";
 import { ApiError } from "../../lib/api";
-import { issueText } from "../../../shared/problems/issue-text";
 import { problemText } from "../../lib/problem-text";
 import { attachFile } from "./queries";
 

@@ -15,12 +15,15 @@ export function PeopleTable({
   error,
   onRetry,
   timeZone,
+  namesZone,
 }: {
   people: readonly UserView[];
   state: "ready" | "loading" | "failed";
   error: unknown;
   onRetry: () => void;
   timeZone: string;
+  /** Where the reader's sites have several, a time says whose it is. */
+  namesZone: boolean;
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
@@ -67,6 +70,7 @@ export function PeopleTable({
     {
       id: "last",
       head: i18n.t("Last sign-in"),
+      unit: namesZone ? timeZone : undefined,
       sortValue: ({ lastSignInAt }) => lastSignInAt,
       cell: ({ lastSignInAt, isBound }) =>
         lastSignInAt !== null

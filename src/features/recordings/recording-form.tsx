@@ -3,6 +3,7 @@ import { useState } from "react";
 import { z } from "zod";
 import { formatLevel } from "../../../shared/format/level";
 import { formatNumber } from "../../../shared/format/number";
+import { issueText } from "../../../shared/problems/issue-text";
 import { IsoDate } from "../../../shared/schemas/common";
 import {
   type CalibrationTone,
@@ -29,7 +30,6 @@ import { FormProblem } from "../../components/form-problem";
 import { Status } from "../../components/status";
 import { ApiError } from "../../lib/api";
 import { useLocale } from "../../lib/i18n";
-import { issueText } from "../../../shared/problems/issue-text";
 import { type NewRecording, useMeasureTone, useSendRecording } from "./queries";
 import { recordingText, showRecordingIssuesOn } from "./recording-text";
 import { fullScaleSineDb, megabytes, toneText } from "./recording-words";

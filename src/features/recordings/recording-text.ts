@@ -2,8 +2,8 @@ import type { I18n } from "@lingui/core";
 import type { FieldPath, FieldValues, UseFormSetError } from "react-hook-form";
 import { formatNumber } from "../../../shared/format/number";
 import type { Locale } from "../../../shared/i18n/index";
-import { ApiError } from "../../lib/api";
 import { issueText } from "../../../shared/problems/issue-text";
+import { ApiError } from "../../lib/api";
 
 type Params = Readonly<Record<string, unknown>>;
 

@@ -22,9 +22,8 @@ export function ResultFacts({
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  const timeZone = Intl.DateTimeFormat().resolvedOptions().timeZone;
   const ruleSet = ruleSetVersion(result.governing.key, result.governing.version);
-  const at = (instant: string) => formatInstant(instant, timeZone, locale);
+  const at = (instant: string) => formatInstant(instant, result.timeZone, locale);
   return (
     <aside className="working-margin" aria-label={i18n.t("About this working")}>
       <p>

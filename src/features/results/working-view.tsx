@@ -24,9 +24,11 @@ import { ShareBar } from "../../components/share-bar";
 import { Verdict } from "../../components/verdict";
 import { useLocale } from "../../lib/i18n";
 import {
+  type Decimals,
   isLimitAt,
   limitText,
   mathText,
+  printedMath,
   sourceTexts,
   workingText,
   workingValueText,
@@ -42,7 +44,7 @@ const NUMERIC: ReadonlySet<WorkingValue["kind"]> = new Set([
   "number",
 ]);
 
-function Value({ value }: { value: WorkingValue }) {
+function Value({ value, decimals }: { value: WorkingValue; decimals?: Decimals }) {
   const { i18n } = useLingui();
   const locale = useLocale();
   if (value.kind === "verdict")
@@ -54,7 +56,7 @@ function Value({ value }: { value: WorkingValue }) {
   if (value.kind === "math")
     return (
       <span className="test-line">
-        <MathLine parts={value.parts} />
+        <MathLine {...printedMath(i18n, value.parts, true)} />
       </span>
     );
   if (value.kind === "scientific") {
@@ -86,19 +88,33 @@ function Value({ value }: { value: WorkingValue }) {
         ))}
       </ul>
     );
-  return <>{workingValueText(i18n, locale, value)}</>;
+  return <>{workingValueText(i18n, locale, value, decimals)}</>;
 }
 
 const RELATIONS = /^(=|≤|<|>|≥|≈)$/;
 
-function MathLine({ parts }: { parts: readonly MathPart[] }): ReactNode {
+function MathLine({
+  parts,
+  decimals,
+}: {
+  parts: readonly MathPart[];
+  decimals?: Decimals;
+}): ReactNode {
   return parts.map((part, index) => (
     // biome-ignore lint/suspicious/noArrayIndexKey: the parts of an equation have no identity but their place
-    <MathPiece key={index} part={part} isLimit={isLimitAt(parts, index)} />
+    <MathPiece key={index} part={part} isLimit={isLimitAt(parts, index)} decimals={decimals} />
   ));
 }
 
-function MathPiece({ part, isLimit }: { part: MathPart; isLimit: boolean }) {
+function MathPiece({
+  part,
+  isLimit,
+  decimals,
+}: {
+  part: MathPart;
+  isLimit: boolean;
+  decimals: Decimals | undefined;
+}) {
   const { i18n } = useLingui();
   const locale = useLocale();
   switch (part.kind) {
@@ -115,24 +131,31 @@ function MathPiece({ part, isLimit }: { part: MathPart; isLimit: boolean }) {
     case "value":
       return part.isResult ? (
         <Result>
-          <Value value={part.value} />
+          <Value value={part.value} decimals={decimals} />
           {part.value.kind === "level" || part.value.kind === "difference" ? " dB" : ""}
         </Result>
       ) : (
         <PutIn>
-          {isLimit ? limitText(i18n, locale, part.value) : <Value value={part.value} />}
+          {isLimit ? (
+            limitText(i18n, locale, part.value)
+          ) : (
+            <Value value={part.value} decimals={decimals} />
+          )}
         </PutIn>
       );
     case "sum":
       return <Sum />;
     case "fraction":
       return (
-        <Fraction over={<MathLine parts={part.over} />} under={<MathLine parts={part.under} />} />
+        <Fraction
+          over={<MathLine parts={part.over} decimals={decimals} />}
+          under={<MathLine parts={part.under} decimals={decimals} />}
+        />
       );
     case "power":
       return (
         <Power base={part.base}>
-          <MathLine parts={part.exponent} />
+          <MathLine parts={part.exponent} decimals={decimals} />
         </Power>
       );
   }
@@ -268,7 +291,7 @@ function Equations({ equations }: { equations: readonly WorkingEquation[] }) {
           <p className="equation-label">{label}</p>
         )}
         <Equation number={equation.number} spoken={mathText(i18n, locale, equation.parts)}>
-          <MathLine parts={equation.parts} />
+          <MathLine {...printedMath(i18n, equation.parts)} />
         </Equation>
       </Fragment>
     );

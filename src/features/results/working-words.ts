@@ -10,6 +10,7 @@ import type {
 import { reasonText } from "../../../shared/findings/reasons";
 import { formatDose, formatShare } from "../../../shared/format/dose";
 import { formatMinutes } from "../../../shared/format/duration";
+import { equationDigits, followsAsPrinted, holdsAsPrinted } from "../../../shared/format/equation";
 import { formatFigures, scientificParts } from "../../../shared/format/figures";
 import { formatLevel, formatLimit } from "../../../shared/format/level";
 import { formatNumber, NO_FIGURE } from "../../../shared/format/number";
@@ -85,19 +86,32 @@ const SUPERSCRIPTS: Readonly<Record<string, string>> = {
 const raised = (exponent: number): string =>
   [...String(exponent)].map((sign) => SUPERSCRIPTS[sign] ?? sign).join("");
 
+/** Decimals of what is printed: of levels and differences, and of a dose where it is tested. */
+export interface Decimals {
+  readonly levels: number;
+  readonly dose: number;
+}
+
+const PLAIN: Decimals = { levels: 1, dose: 0 };
+
 /** A number or word of the working, rounded by its kind as a reader sees it. */
-export function workingValueText(i18n: I18n, locale: Locale, value: WorkingValue): string {
+export function workingValueText(
+  i18n: I18n,
+  locale: Locale,
+  value: WorkingValue,
+  decimals: Decimals = PLAIN,
+): string {
   switch (value.kind) {
     case "level":
-      return formatLevel(value.db, locale, value.bound);
+      return formatLevel(value.db, locale, value.bound, decimals.levels);
     case "difference":
-      return formatNumber(value.db, 1, locale);
+      return formatNumber(value.db, decimals.levels, locale);
     case "minutes":
       return formatMinutes(value.min, locale);
     case "share":
       return formatShare(value.pct, locale);
     case "dose":
-      return `${value.bound ? BOUND_SIGNS[value.bound] : ""}${formatDose(value.pct, locale)}`;
+      return `${value.bound ? BOUND_SIGNS[value.bound] : ""}${formatDose(value.pct, locale, decimals.dose)}`;
     case "scientific": {
       const parts = scientificParts(value.number, locale);
       return parts ? `${parts.mantissa} × 10${raised(parts.exponent)}` : NO_FIGURE;
@@ -125,7 +139,7 @@ export function workingValueText(i18n: I18n, locale: Locale, value: WorkingValue
         .map((one) => workingValueText(i18n, locale, one))
         .join(value.values.some(({ kind }) => kind === "text") ? "; " : " ");
     case "math":
-      return mathText(i18n, locale, value.parts);
+      return mathText(i18n, locale, value.parts, true);
   }
 }
 
@@ -152,15 +166,83 @@ export function sourceTexts(i18n: I18n, sources: readonly WorkingSource[]): stri
   return whole.flatMap((source) => sourceText(i18n, source) || []);
 }
 
-/** An equation as one line of text: what is read out, and what stands in the CSV. */
-export function mathText(i18n: I18n, locale: Locale, parts: readonly MathPart[]): string {
-  return parts
-    .map((part, index) => partText(i18n, locale, part, isLimitAt(parts, index)))
-    .join(" ")
-    .replaceAll(" ,", ",");
+/** Test cells show what was compared, which is unrounded; in an equation the numbers follow from one another. */
+const TEST_DECIMALS = 4;
+
+/** How an equation is printed: with as many decimals as make it follow, and no sign before a sign. */
+export function printedMath(
+  i18n: I18n,
+  parts: readonly MathPart[],
+  isTest = false,
+): { parts: readonly MathPart[]; decimals: Decimals } {
+  const tidy = withoutDoubleSigns(parts);
+  const of = (levels: number): Decimals => ({ levels, dose: isTest ? levels : 0 });
+  const levels = equationDigits(
+    (digits) => plainText(i18n, "en", tidy, of(digits)),
+    isTest ? TEST_DECIMALS : 1,
+    isTest ? holdsAsPrinted : followsAsPrinted,
+  );
+  return { parts: tidy, decimals: of(levels) };
 }
 
-function partText(i18n: I18n, locale: Locale, part: MathPart, isLimit: boolean): string {
+/** "+ −0.7" is "− 0.7". */
+function withoutDoubleSigns(parts: readonly MathPart[]): MathPart[] {
+  const tidy: MathPart[] = [];
+  for (const part of parts) {
+    const before = tidy.at(-1);
+    const { value } = part.kind === "value" ? part : { value: null };
+    const isSigned =
+      before?.kind === "sign" && (before.text === "+" || before.text === "−") && tidy.length > 1;
+    if (
+      isSigned &&
+      value &&
+      (value.kind === "difference" || value.kind === "level") &&
+      value.db < 0
+    ) {
+      tidy[tidy.length - 1] = { kind: "sign", text: before.text === "+" ? "−" : "+" };
+      tidy.push({ ...part, value: { ...value, db: -value.db } } as MathPart);
+    } else if (part.kind === "fraction")
+      tidy.push({
+        ...part,
+        over: withoutDoubleSigns(part.over),
+        under: withoutDoubleSigns(part.under),
+      });
+    else if (part.kind === "power")
+      tidy.push({ ...part, exponent: withoutDoubleSigns(part.exponent) });
+    else tidy.push(part);
+  }
+  return tidy;
+}
+
+/** An equation as one line of text: what is read out, and what stands in the CSV. */
+export function mathText(
+  i18n: I18n,
+  locale: Locale,
+  parts: readonly MathPart[],
+  isTest = false,
+): string {
+  const printed = printedMath(i18n, parts, isTest);
+  return plainText(i18n, locale, printed.parts, printed.decimals);
+}
+
+const plainText = (
+  i18n: I18n,
+  locale: Locale,
+  parts: readonly MathPart[],
+  decimals: Decimals,
+): string =>
+  parts
+    .map((part, index) => partText(i18n, locale, part, isLimitAt(parts, index), decimals))
+    .join(" ")
+    .replaceAll(" ,", ",");
+
+function partText(
+  i18n: I18n,
+  locale: Locale,
+  part: MathPart,
+  isLimit: boolean,
+  decimals: Decimals,
+): string {
   switch (part.kind) {
     case "sign":
       return part.text;
@@ -169,12 +251,12 @@ function partText(i18n: I18n, locale: Locale, part: MathPart, isLimit: boolean):
     case "value":
       return isLimit
         ? limitText(i18n, locale, part.value)
-        : workingValueText(i18n, locale, part.value);
+        : workingValueText(i18n, locale, part.value, decimals);
     case "sum":
       return "Σ";
     case "fraction":
-      return `${mathText(i18n, locale, part.over)} / ${mathText(i18n, locale, part.under)}`;
+      return `${plainText(i18n, locale, part.over, decimals)} / ${plainText(i18n, locale, part.under, decimals)}`;
     case "power":
-      return `${part.base}^(${mathText(i18n, locale, part.exponent)})`;
+      return `${part.base}^(${plainText(i18n, locale, part.exponent, decimals)})`;
   }
 }

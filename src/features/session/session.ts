@@ -1,6 +1,6 @@
 import { queryOptions, useQuery } from "@tanstack/react-query";
-import type { RoleName, SessionUser, SessionView } from "../../../shared/schemas/session";
 import type { Locale } from "../../../shared/i18n/index";
+import type { RoleName, SessionUser, SessionView } from "../../../shared/schemas/session";
 import { api, noReply } from "../../lib/api";
 import { rememberChoice } from "../../lib/i18n";
 

@@ -5,6 +5,7 @@ import type { z } from "zod";
 import { formatDate } from "../../../shared/format/date";
 import { formatLevel } from "../../../shared/format/level";
 import { GradeName, InstrumentClassName } from "../../../shared/schemas/evaluation";
+import { findLevelDoubts } from "../../../shared/schemas/level-doubts";
 import { TaskDetail, TaskLevelInput, type TaskLevelView } from "../../../shared/schemas/task";
 import {
   DateField,
@@ -27,7 +28,7 @@ import { SpectrumField, useSpectrumCheck } from "../../components/spectrum-field
 import { useLocale } from "../../lib/i18n";
 import { gradeWord, instrumentClassWord } from "../../lib/register-words";
 import { taskQueries } from "./queries";
-import { SamplesField } from "./samples-field";
+import { SamplesField, useSamplesCheck } from "./samples-field";
 
 type Detail = z.infer<typeof TaskDetail>;
 type Level = z.infer<typeof TaskLevelView>;
@@ -58,9 +59,10 @@ function startFrom(level: Level | null, effectiveFrom: string): Input {
       effectiveFrom,
       sourceNote: "",
       reason: null,
+      acceptedDoubts: [],
     };
   const { id: _, number: __, authorName: ___, createdAt: ____, ...facts } = level;
-  return { ...facts, effectiveFrom, reason: null };
+  return { ...facts, effectiveFrom, reason: null, acceptedDoubts: [] };
 }
 
 function MetricField({ form }: { form: TaskLevelForm }) {
@@ -198,9 +200,20 @@ export function LevelForm({
       onSaved();
     },
   });
-  const [metric, levelDb, bands] = form.watch(["metric", "levelDb", "octaveBandsDb"]);
+  const [metric, levelDb, octaveBandsDb, samplesDb] = form.watch([
+    "metric",
+    "levelDb",
+    "octaveBandsDb",
+    "samplesDb",
+  ]);
+  const doubts = findLevelDoubts({ metric, levelDb, octaveBandsDb, samplesDb });
   // A mean at another exchange rate is not what the bands add up to.
-  const spectrum = useSpectrumCheck(bands, metric.kind === "lavg" ? null : levelDb);
+  const spectrum = useSpectrumCheck(octaveBandsDb, metric.kind === "lavg" ? null : levelDb);
+  const samples = useSamplesCheck(
+    doubts.find(({ code }) => code === "level-off-samples"),
+    levelDb,
+    samplesDb,
+  );
   const look = form.handleSubmit((body) => {
     if (!isFirst && body.reason === null) {
       form.setError(
@@ -213,7 +226,8 @@ export function LevelForm({
       );
       return;
     }
-    if (spectrum.isSettled()) change.look(body);
+    if (spectrum.isSettled() && samples.isSettled())
+      change.look({ ...body, acceptedDoubts: doubts.map(({ code }) => code) });
   });
   return (
     <ReviewedChange
@@ -256,6 +270,9 @@ export function LevelForm({
           name="octaveBandsDb"
           label={i18n.t("Octave bands, dB")}
           check={spectrum}
+          onTakeLevel={(foundDb) =>
+            form.setValue("levelDb", foundDb, { shouldDirty: true, shouldValidate: true })
+          }
           note={i18n.t(
             "Unweighted. 63 Hz may stay empty. Eight values can be pasted into any cell.",
           )}
@@ -268,7 +285,7 @@ export function LevelForm({
           isOptional
         />
         <PeakField form={form} />
-        <SamplesField form={form} />
+        <SamplesField form={form} check={samples} />
         <SelectField
           form={form}
           name="instrument"

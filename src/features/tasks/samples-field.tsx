@@ -1,15 +1,38 @@
 import { useLingui } from "@lingui/react";
 import { useState } from "react";
 import { get, useController } from "react-hook-form";
-import { editNumber, parseNumber } from "../../../shared/format/number";
+import { formatLevel, formatLevelChange } from "../../../shared/format/level";
+import { editNumber, parseNumber, roundTo } from "../../../shared/format/number";
+import type { LevelDoubt } from "../../../shared/schemas/level-doubts";
 import { Field, Unreadable } from "../../components/form";
+import { TextButton } from "../../components/link";
+import { useFiguresQuestion } from "../../components/spectrum-field";
 import { useLocale } from "../../lib/i18n";
 import type { TaskLevelForm } from "./level-form";
 
+/** Holds the samples to the level; `doubt` is what they say instead. */
+export function useSamplesCheck(
+  doubt: LevelDoubt | undefined,
+  levelDb: unknown,
+  samplesDb: unknown,
+) {
+  return {
+    doubt,
+    ...useFiguresQuestion(doubt !== undefined, JSON.stringify([levelDb, samplesDb])),
+  };
+}
+
 /** Samples behind a level, pasted or typed: one a line, or with blanks between. */
-export function SamplesField({ form }: { form: TaskLevelForm }) {
+export function SamplesField({
+  form,
+  check,
+}: {
+  form: TaskLevelForm;
+  check: ReturnType<typeof useSamplesCheck>;
+}) {
   const { i18n } = useLingui();
   const locale = useLocale();
+  const { doubt } = check;
   const { field } = useController({ control: form.control, name: "samplesDb" });
   const stored = (field.value ?? []) as readonly (number | Unreadable)[];
   const [text, setText] = useState(() =>
@@ -33,32 +56,75 @@ export function SamplesField({ form }: { form: TaskLevelForm }) {
       error={firstFault?.message}
     >
       {(wires) => (
-        <textarea
-          className="input"
-          rows={2}
-          {...wires}
-          ref={field.ref}
-          name={field.name}
-          value={text}
-          onBlur={field.onBlur}
-          onChange={(event) => {
-            setText(event.target.value);
-            field.onChange(
-              event.target.value
-                .split(/[\s;]+/)
-                .filter((part) => part !== "")
-                .map((part) => {
-                  const parsed = parseNumber(part, locale);
-                  return parsed.kind === "ok"
-                    ? parsed.value
-                    : new Unreadable(
-                        parsed.kind === "ambiguous" ? "ambiguous" : "not-a-number",
-                        part,
-                      );
-                }),
-            );
-          }}
-        />
+        <>
+          <textarea
+            className="input"
+            rows={2}
+            {...wires}
+            ref={field.ref}
+            name={field.name}
+            value={text}
+            onBlur={field.onBlur}
+            onChange={(event) => {
+              setText(event.target.value);
+              field.onChange(
+                event.target.value
+                  .split(/[\s;]+/)
+                  .filter((part) => part !== "")
+                  .map((part) => {
+                    const parsed = parseNumber(part, locale);
+                    return parsed.kind === "ok"
+                      ? parsed.value
+                      : new Unreadable(
+                          parsed.kind === "ambiguous" ? "ambiguous" : "not-a-number",
+                          part,
+                        );
+                  }),
+              );
+            }}
+          />
+          {doubt && (
+            <span className="samples-question">
+              <label className="choice">
+                <input
+                  ref={check.box}
+                  type="checkbox"
+                  checked={check.isAccepted}
+                  onChange={(event) => check.accept(event.target.checked)}
+                />
+                <span>
+                  {i18n.t(
+                    "The level is right although the samples’ energy mean is {found} dB(A), {difference} dB from it.",
+                    {
+                      found: formatLevel(doubt.params.foundDb, locale),
+                      difference: formatLevelChange(doubt.params.offDb, locale),
+                    },
+                  )}
+                </span>
+              </label>
+              <span className="spectrum-ways">
+                <TextButton
+                  onClick={() =>
+                    form.setValue("levelDb", roundTo(doubt.params.foundDb, 1), {
+                      shouldDirty: true,
+                      shouldValidate: true,
+                    })
+                  }
+                >
+                  {i18n.t("Take the samples’ level")}
+                </TextButton>
+                <TextButton
+                  onClick={() => {
+                    setText("");
+                    field.onChange([]);
+                  }}
+                >
+                  {i18n.t("Leave the samples out")}
+                </TextButton>
+              </span>
+            </span>
+          )}
+        </>
       )}
     </Field>
   );

@@ -122,6 +122,7 @@ const WORDS: Readonly<Record<string, (i18n: I18n) => string>> = {
   certificateFileId: (i18n) => i18n.t("Certificate"),
   place: (i18n) => i18n.t("Place"),
   doubts: (i18n) => i18n.t("What speaks against it"),
+  acceptedDoubts: (i18n) => i18n.t("Kept although"),
   fileIds: (i18n) => i18n.t("Files"),
   sizeBytes: (i18n) => i18n.t("Size"),
   // Surveys and changes

@@ -100,16 +100,18 @@ function Entered({ crew, isAhead }: { crew: CrewProgress; isAhead: boolean }) {
   const { i18n } = useLingui();
   const expected = Math.max(0, crew.members - crew.absent);
   const waits = Math.max(0, expected - crew.saved);
+  // Who is marked absent is entered, as on the day's own page.
+  const entered = crew.saved + crew.absent;
   if (expected === 0 && crew.saved === 0) return <>{i18n.t("nobody expected")}</>;
   const words =
     isAhead && crew.saved === 0
       ? i18n.t("starts {time}", { time: crew.start })
       : waits === 0
         ? i18n.t("{saved} of {expected} saved", {
-            saved: crew.saved,
-            expected: Math.max(expected, crew.saved),
+            saved: entered,
+            expected: Math.max(crew.members, entered),
           })
-        : i18n.t("{saved} saved, {waits} wait", { saved: crew.saved, waits });
+        : i18n.t("{saved} saved, {waits} wait", { saved: entered, waits });
   return (
     <TextLink
       className={waits > 0 && !isAhead ? "is-open" : "is-quiet"}

@@ -17,6 +17,7 @@ const finding = (overrides: Partial<FindingRow> = {}): FindingRow =>
     firstDate: "2026-11-30",
     lastDate: "2026-11-30",
     daysCount: 1,
+    workersCount: 1,
     dueOn: today,
     rulesUntil: null,
     siteId: id(90),
@@ -105,7 +106,11 @@ test("what one order answers stands on one row, read from the latest day", () =>
     kind: "over-limit-at-ear",
     worker: { id: id(51), name: "D. Tavernor", employeeNumber: "4417" },
   });
-  const { items } = placeFindings([over, finding(), gap, other], () => today, () => today);
+  const { items } = placeFindings(
+    [over, finding(), gap, other],
+    () => today,
+    () => today,
+  );
   expect(items.map((item) => [item.finding.id, item.also.map((one) => one.id)])).toEqual([
     [id(1), [id(2)]],
     [id(3), []],
@@ -116,9 +121,17 @@ test("what one order answers stands on one row, read from the latest day", () =>
 test("an order that is marked as done asks for nothing until a later day does", () => {
   const done = finding({ state: "done" });
   const over = finding({ id: id(2), kind: "over-limit-at-ear" });
-  const first = placeFindings([done, over], () => today, () => today);
+  const first = placeFindings(
+    [done, over],
+    () => today,
+    () => today,
+  );
   expect(first.items).toEqual([]);
   expect(first.toBeChecked.map((one) => [one.finding.id, one.also.length])).toEqual([[id(1), 1]]);
-  const later = placeFindings([done, { ...over, lastDate: "2026-12-01" }], () => today, () => today);
+  const later = placeFindings(
+    [done, { ...over, lastDate: "2026-12-01" }],
+    () => today,
+    () => today,
+  );
   expect(later.items.map((item) => item.finding.id)).toEqual([id(2)]);
 });

@@ -50,15 +50,15 @@ function actionOf(
     case "protects-too-much":
       return worker && remedy
         ? { label: i18n.t("Assign"), to: paths.assign(worker.id, handoutsOf(remedy)[0]) }
-        : { label: i18n.t("Open"), to: paths.finding(id) };
+        : { label: i18n.t("Open it"), to: paths.finding(id) };
     case "reading-missing":
       return { label: i18n.t("Add"), to: paths.newRun };
     case "instrument":
       return facts.calibrationFailedOn
-        ? { label: i18n.t("Open"), to: paths.finding(id) }
+        ? { label: i18n.t("Open it"), to: paths.finding(id) }
         : { label: i18n.t("Book"), to: paths.instruments };
     default:
-      return { label: i18n.t("Open"), to: paths.finding(id) };
+      return { label: i18n.t("Open it"), to: paths.finding(id) };
   }
 }
 

@@ -1,4 +1,5 @@
 import { useLingui } from "@lingui/react";
+import { useEffect, useRef } from "react";
 import type { z } from "zod";
 import { formatDate, localDateOf } from "../../../shared/format/date";
 import type { WorkerView } from "../../../shared/schemas/worker";
@@ -22,15 +23,23 @@ export function SignInSlip({
   const { i18n } = useLingui();
   const locale = useLocale();
   const issue = useIssueCode(worker.id);
+  const place = useRef<HTMLDivElement>(null);
+  // The slip takes the button's place and gives it back: the focus goes along.
+  useEffect(() => {
+    const at = place.current;
+    if (!issue.data || !at) return;
+    at.querySelector<HTMLElement>("[data-code]")?.focus();
+    return () => at.querySelector<HTMLElement>("[data-make-code]")?.focus();
+  }, [issue.data]);
   const today = localDateOf(new Date().toISOString(), timeZone);
   return (
-    <>
+    <div ref={place} className="contents">
       {!issue.data && (
         <p className="slip-offer">
           {worker.hasSignIn
             ? i18n.t("This worker signs in already; a new code binds another sign-in.")
             : i18n.t("A one-use code on paper binds a sign-in to this worker.")}{" "}
-          <Button isBusy={issue.isPending} onClick={() => issue.mutate()}>
+          <Button data-make-code isBusy={issue.isPending} onClick={() => issue.mutate()}>
             {i18n.t("Make a sign-in code")}
           </Button>
         </p>
@@ -66,7 +75,7 @@ export function SignInSlip({
               <dd>{issuedBy}</dd>
             </div>
           </dl>
-          <p className="slip-code mono" aria-live="polite">
+          <p className="slip-code mono" data-code tabIndex={-1}>
             {issue.data.code}
           </p>
           <ol className="slip-steps">
@@ -89,6 +98,6 @@ export function SignInSlip({
           </p>
         </div>
       )}
-    </>
+    </div>
   );
 }

@@ -7,7 +7,7 @@ import type { StripFrame } from "../../components/strip-of-day";
 import { useLocale } from "../../lib/i18n";
 import type { GapMonth } from "./queries";
 
-type CountName = keyof Pick<
+export type CountName = keyof Pick<
   GapMonth,
   | "days"
   | "over"
@@ -18,7 +18,7 @@ type CountName = keyof Pick<
   | "protectorFault"
   | "corrected"
 >;
-const COUNTS: readonly CountName[] = [
+export const COUNTS: readonly CountName[] = [
   "days",
   "over",
   "cantTell",
@@ -38,7 +38,11 @@ const ENDS: ReadonlySet<CountName> = new Set([
 ]);
 const STRIP_PX = 200;
 
-const AT_EAR: ReadonlySet<CountName> = new Set<CountName>(["over", "cantTell", "notAssessed"]);
+export const AT_EAR: ReadonlySet<CountName> = new Set<CountName>([
+  "over",
+  "cantTell",
+  "notAssessed",
+]);
 
 const cellOf = (name: CountName) => `is-figure${ENDS.has(name) ? " ends-group" : ""}`;
 
@@ -67,17 +71,6 @@ export function MonthsTable({
   const count = (value: number) =>
     value === 0 ? <span className="is-zero">0</span> : formatNumber(value, 0, locale);
   const [limit] = limits;
-  /** On a phone the figures of a month stand under words of their own. */
-  const heads: Record<CountName, string> = {
-    days: i18n.t("Days"),
-    over: i18n.t("Over at the ear"),
-    cantTell: i18n.t("Can’t tell yet at the ear"),
-    notAssessed: i18n.t("Not assessed"),
-    overOutside: i18n.t("Over without protection"),
-    cantTellOutside: i18n.t("Can’t tell yet without protection"),
-    protectorFault: i18n.t("Protector too little or much"),
-    corrected: i18n.t("Corrected"),
-  };
   // Where the rule has no limit at the ear there is nothing to count: that is not zero.
   const figure = (name: CountName, value: number) =>
     AT_EAR.has(name) && frame?.hasLimitAtEar === false ? NO_FIGURE : count(value);
@@ -164,7 +157,7 @@ export function MonthsTable({
                   )}
                 </th>
                 {COUNTS.map((name) => (
-                  <td key={name} className={cellOf(name)} data-head={heads[name]}>
+                  <td key={name} className={cellOf(name)}>
                     {figure(name, month[name])}
                   </td>
                 ))}
@@ -194,7 +187,7 @@ export function MonthsTable({
                     : i18n.t("The year")}
                 </th>
                 {COUNTS.map((name) => (
-                  <td key={name} className={cellOf(name)} data-head={heads[name]}>
+                  <td key={name} className={cellOf(name)}>
                     {figure(name, sum(name))}
                   </td>
                 ))}
@@ -209,11 +202,12 @@ export function MonthsTable({
 }
 
 /** Two medians are no day: no uncertainty, no word, no verdict. */
-const medians = (month: GapMonth) => ({
+export const medians = (month: GapMonth) => ({
   outsideDb: month.medianOutsideDb,
   outsideUDb: null,
   outsideBound: "exact" as const,
   atEarDb: month.medianAtEarDb,
+  atEarBound: "exact" as const,
   atEarUDb: null,
   atEarActiveDb: null,
   atEarAsWorkedDb: null,
