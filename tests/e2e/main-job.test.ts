@@ -209,7 +209,11 @@ describe("the main job, through the real sign-in of each role", () => {
     await page.getByLabel("What is the problem?").fill("The cushion has a tear.");
     await page.getByRole("button", { name: "Send to the safety officer" }).click();
     await page.getByText("Thank you. Your safety officer has it.").waitFor();
-    const answer = await page.evaluate(async () => (await fetch("/api/findings")).status);
+    const { rows } = await ask<{ rows: { worker: { name: string } | null }[] }>(page, "/findings");
+    expect(new Set(rows.map(({ worker }) => worker?.name))).toEqual(
+      new Set([somebody("worker", "d.tavernor").name]),
+    );
+    const answer = await page.evaluate(async () => (await fetch("/api/crews")).status);
     expect(answer).toBe(403);
     await close();
   });
