@@ -29,11 +29,14 @@ async function readFacts() {
 
 async function listDataFiles(): Promise<string[]> {
   const found = await readdir(config.DATA_DIR, { recursive: true, withFileTypes: true });
-  return found
-    .filter((entry) => entry.isFile())
-    .map((entry) => path.relative(config.DATA_DIR, path.join(entry.parentPath, entry.name)))
-    .filter((relative) => !relative.startsWith(".restore-"))
-    .sort();
+  return (
+    found
+      .filter((entry) => entry.isFile())
+      .map((entry) => path.relative(config.DATA_DIR, path.join(entry.parentPath, entry.name)))
+      // A file on its way in belongs to nobody yet.
+      .filter((relative) => !relative.startsWith(".restore-") && !relative.startsWith("staging"))
+      .sort()
+  );
 }
 
 /**

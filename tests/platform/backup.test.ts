@@ -10,7 +10,7 @@ import {
   writeFileSync,
 } from "node:fs";
 import { tmpdir } from "node:os";
-import { delimiter, join } from "node:path";
+import { delimiter, join, relative } from "node:path";
 import { promisify } from "node:util";
 import { afterAll, beforeAll, expect, test } from "vitest";
 import { type Cluster, openCluster } from "../../scripts/lib/cluster.mjs";
@@ -83,7 +83,12 @@ async function digestTables({ cluster }: Installation): Promise<string[]> {
   return cluster.sql(digests.join("\n"), { database: "dinward" });
 }
 
-const listFiles = (dataDir: string) => readdirSync(dataDir, { recursive: true }).sort();
+/** Files by their path; a folder that is empty is none. */
+const listFiles = (dataDir: string) =>
+  readdirSync(dataDir, { recursive: true, withFileTypes: true })
+    .filter((entry) => entry.isFile())
+    .map((entry) => relative(dataDir, join(entry.parentPath, entry.name)))
+    .sort();
 
 beforeAll(async () => {
   await buildApp();
