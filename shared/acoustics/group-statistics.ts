@@ -6,6 +6,7 @@ import {
   studentQuantile,
 } from "./distributions";
 import { energyMeanDb } from "./exposure";
+import { arithmeticMean } from "./mean";
 import { exceedanceBound, toleranceFactor } from "./noncentral-t";
 
 /** A result of one worker of a group. */
@@ -133,7 +134,7 @@ function exceedanceOf(
 }
 
 function moments(values: readonly number[]): { meanDb: number; sdDb: number } {
-  const meanDb = mean(values);
+  const meanDb = arithmeticMean(values);
   let squares = 0;
   for (const value of values) squares += (value - meanDb) ** 2;
   return { meanDb, sdDb: Math.sqrt(squares / (values.length - 1)) };
@@ -143,9 +144,6 @@ function unbiased(samples: readonly GroupSample[]): { meanDb: number; sdDb: numb
   const { meanDb, sdDb } = fitBelowThreshold(samples);
   return { meanDb, sdDb: sdDb * Math.sqrt(samples.length / (samples.length - 1)) };
 }
-
-const mean = (values: readonly number[]): number =>
-  values.reduce((sum, value) => sum + value, 0) / values.length;
 
 /**
  * Mean and standard deviation (divisor n) of the normal distribution under which the samples are likeliest, those below
@@ -269,7 +267,7 @@ export function workerOutliers(samples: readonly GroupSample[]): WorkerOutliers 
   const means = [...byWorker].map(([workerId, values]) => ({
     workerId,
     sampleCount: values.length,
-    meanDb: mean(values),
+    meanDb: arithmeticMean(values),
   }));
   means.sort((a, b) => b.meanDb - a.meanDb);
   const scatter = means.length < 3 ? null : moments(means.map(({ meanDb }) => meanDb));
@@ -371,12 +369,12 @@ export function groupBelonging(samples: readonly GroupSample[]): Belonging {
   });
   if (groups.length < 2) return untold("one-worker");
   if (degreesWithin === 0) return untold("no-repeats");
-  const grand = mean(groups.flat());
+  const grand = arithmeticMean(groups.flat());
   let between = 0;
   let within = 0;
   let sizeSquares = 0;
   for (const values of groups) {
-    const own = mean(values);
+    const own = arithmeticMean(values);
     between += values.length * (own - grand) ** 2;
     for (const value of values) within += (value - own) ** 2;
     sizeSquares += values.length ** 2;

@@ -1,4 +1,5 @@
 import { energyMeanDb } from "./exposure";
+import { arithmeticMean } from "./mean";
 import type { InstrumentClass, SurveyStrategy, UncertaintyReason } from "./types";
 
 /** Coverage factor of the one-sided interval of 95 %. @source iso-9612-2009 C.1 */
@@ -195,12 +196,6 @@ function simpson(f: (x: number) => number, from: number, to: number): number {
   let sum = f(from) + f(to);
   for (let i = 1; i < steps; i++) sum += f(from + i * width) * (i % 2 === 1 ? 4 : 2);
   return (sum * width) / 3;
-}
-
-function arithmeticMean(values: readonly number[]): number {
-  let sum = 0;
-  for (const value of values) sum += value;
-  return sum / values.length;
 }
 
 /**

@@ -1,3 +1,4 @@
+import { arithmeticMean } from "../mean";
 import { leastSquares } from "./least-squares";
 
 const REFERENCE_PRESSURE_PA = 20e-6;
@@ -88,27 +89,25 @@ export class CalibrationTone {
           : tones.length * FRAME_S < SHORTEST_S
             ? "no-tone"
             : "unsteady",
-        frequencyHz: tones.length === 0 ? null : mean(tones.map((frame) => frame.frequencyHz)),
+        frequencyHz:
+          tones.length === 0 ? null : arithmeticMean(tones.map((frame) => frame.frequencyHz)),
         longestSteadyS,
       };
     }
     const squares = stretch.frames.map((frame) => frame.square);
-    const square = mean(squares);
+    const square = arithmeticMean(squares);
     return {
       found: true,
       paPerFullScale:
         (REFERENCE_PRESSURE_PA * 10 ** (options.toneLevelDb / 20)) / Math.sqrt(square),
       levelDb: 10 * Math.log10(square),
-      frequencyHz: mean(stretch.frames.map((frame) => frame.frequencyHz)),
+      frequencyHz: arithmeticMean(stretch.frames.map((frame) => frame.frequencyHz)),
       spreadDb: 10 * Math.log10(Math.max(...squares) / Math.min(...squares)),
       startS: stretch.start * FRAME_S,
       durationS: longestSteadyS,
     };
   }
 }
-
-const mean = (values: readonly number[]) =>
-  values.reduce((sum, value) => sum + value, 0) / values.length;
 
 /** The longest run of frames whose levels all lie within STEADY_WITHIN_DB. */
 function longestSteady(frames: readonly (Frame | null)[]): { start: number; frames: Frame[] } {
