@@ -121,6 +121,8 @@ async function importOne(
   await readHistoryImport({ organizationId, importId });
   await inTransaction(scope, async () => {
     const found = (await HistoryImport.findByPk(importId))!;
+    if (found.state !== "ready")
+      throw new Error(`An import is ${found.state}: ${JSON.stringify(found.report?.issues)}`);
     const date = found.report!.startsAt!.slice(0, 10);
     await orderHistoryStoring(await loadActor(userId, epoch), found, date, {
       covers: "shift",

@@ -309,6 +309,6 @@ export function useDecidedBy(figures: DayFigures): string | undefined {
     return isBoundReason(reason) ? openByBound(i18n, locale, figures) : reasonText(i18n, reason);
   }
   if (figures.whileWornDb === null) return figures.decidingTaskName ?? undefined;
-  const level = formatLevel(figures.whileWornDb, locale);
+  const level = formatLevel(figures.whileWornDb, locale, figures.atEarBound);
   return figures.decidingTaskName ? `${figures.decidingTaskName} ${level}` : level;
 }

@@ -61,7 +61,7 @@ export function stripLabel(i18n: I18n, props: StripWords): string {
   if (props.hasProtector === "no") sentences.push(i18n.t("No protector."));
   else if (props.hasProtector === "unknown") sentences.push(i18n.t("Protector not known."));
   else if (props.word && props.whileWornDb !== null) {
-    const worn = level(props.whileWornDb);
+    const worn = formatLevel(props.whileWornDb, locale, props.atEarBound);
     const word = protectorSentence(i18n, props.word);
     sentences.push(
       props.decidingTask

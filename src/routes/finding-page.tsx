@@ -17,6 +17,7 @@ import { type DataColumn, DataTable } from "../components/data-table";
 import {
   AtEarFigure,
   DayStrip,
+  isBoundReason,
   OutsideFigure,
   TableStripGround,
   TableStripScale,
@@ -239,10 +240,11 @@ function Evidence({ finding }: { finding: FindingView }) {
         ) : (
           <ProtectorWord
             word={day.word}
+            isOpen={isBoundReason(day.reason)}
             beneath={
               day.whileWornDb === null
                 ? undefined
-                : [day.decidingTaskName, formatLevel(day.whileWornDb, locale)]
+                : [day.decidingTaskName, formatLevel(day.whileWornDb, locale, day.atEarBound)]
                     .filter(Boolean)
                     .join(" ")
             }

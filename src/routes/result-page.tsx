@@ -170,7 +170,7 @@ function ResultStrip({ result: { figures } }: { result: ResultView }) {
   const isPhone = useIsPhone();
   const frame = useStripFrame(figures);
   const widthPx = isPhone ? 280 : 560;
-  const level = (db: number) => formatLevel(db, locale);
+  const level = (db: number) => formatLevel(db, locale, figures.atEarBound);
   return (
     <div className="working-strip">
       <TableStripScale

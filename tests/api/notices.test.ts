@@ -1,6 +1,7 @@
 import { afterEach, describe, expect, inject, test } from "vitest";
 import { readConfig } from "../../server/config";
 import { lookAfter } from "../../server/jobs/look-after";
+import { recomputeStaleDays } from "../../server/jobs/recompute-stale-days";
 import { sendNotice } from "../../server/jobs/send-notice";
 import { Mailer } from "../../server/lib/mailer";
 import {
@@ -32,14 +33,20 @@ interface Row {
 }
 
 /** A worker in noise without a protector, saved by the officer: three people are to be told. */
-async function buildNotices() {
+async function buildNotices(level: { peakDb?: number; peakWeighting?: string } = {}) {
   const { id: organizationId } = await buildOrganization();
   const site = await buildSite({
     organizationId,
     governingRuleSet: "uk-2005",
     timeZone: "Europe/London",
   });
-  const task = await buildTask({ site, name: "Run-up", levelDb: 98, metric: { kind: "steady" } });
+  const task = await buildTask({
+    site,
+    name: "Run-up",
+    levelDb: 98,
+    metric: { kind: "steady" },
+    ...level,
+  });
   const job = await buildJob({ site, tasks: [{ taskId: task.id, durationMin: 480 }] });
   const workers = [
     await buildWorker({ site, jobId: job.id, name: "R. Szabó" }),
@@ -78,6 +85,7 @@ async function buildNotices() {
     workers,
     officer,
     supervisor,
+    task,
     told,
     notices,
     send,
@@ -215,6 +223,30 @@ describe("the outbox", () => {
     expect(mails).toHaveLength(2);
     expect(mails[1]?.text).toMatch(/This replaces/);
     expect(mails[1]?.text).toMatch(/not over the limit after all/);
+  });
+
+  test("a peak corrected after sending is told too, though no 8-hour level moved", async () => {
+    const { client, entryId, organizationId, notices, send, task } = await buildNotices({
+      peakDb: 136,
+      peakWeighting: "C",
+    });
+    await client.post(`/entries/${entryId}/notices/actions`, { action: "send-now" });
+    for (const notice of await notices()) await send(notice);
+    const corrected = await client.post(`/tasks/${task.id}/levels`, {
+      metric: { kind: "steady" },
+      levelDb: 98,
+      peak: { levelDb: 130, weighting: "C" },
+      grade: "task-level",
+      effectiveFrom: daysFromToday(-1),
+      reason: "a knock on the microphone",
+    });
+    expect(corrected.status).toBe(201);
+    await recomputeStaleDays(organizationId);
+    const replacing = await select<{ audience: string }>(
+      "SELECT audience FROM notices WHERE organization_id = $1 AND state = 'waiting' AND replaces_id IS NOT NULL ORDER BY audience",
+      [organizationId],
+    );
+    expect(replacing.map(({ audience }) => audience)).toEqual(["officer", "supervisor", "worker"]);
   });
 
   test("a notice can be read before it goes; a foreign organization's is not there", async () => {

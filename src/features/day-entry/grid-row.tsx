@@ -509,7 +509,9 @@ function Word({ found, frame }: GridRowProps) {
         frame.isWide && summary.decidingTaskName && summary.whileWornDb !== null ? (
           <>
             {withSoftHyphens(summary.decidingTaskName)}{" "}
-            <span className="mono">{formatLevel(summary.whileWornDb, locale)}</span>
+            <span className="mono">
+              {formatLevel(summary.whileWornDb, locale, summary.atEarBound)}
+            </span>
           </>
         ) : undefined
       }

@@ -117,7 +117,8 @@ export function WorkedOut({
           <>
             {i18n.t("At the ear with the active part off")}{" "}
             <b className="mono">{formatLevel(summary.atEarDb, locale, summary.atEarBound)}</b>,{" "}
-            {i18n.t("with it on")} <b className="mono">{level(summary.atEarActiveDb)}</b>
+            {i18n.t("with it on")}{" "}
+            <b className="mono">{formatLevel(summary.atEarActiveDb, locale, summary.atEarBound)}</b>
             {". "}
           </>
         )}
