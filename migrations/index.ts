@@ -8,6 +8,7 @@ import { rulesChangedSteps } from "./20261201110000-rules-changed-steps";
 import { historyImports } from "./20261201120000-history-imports";
 import { recordings } from "./20261201130000-recordings";
 import { atEarBounds } from "./20261201140000-at-ear-bounds";
+import { protectorsAndFit } from "./20261201150000-protectors-and-fit";
 
 /** In the order in which they run. */
 export const migrations = [
@@ -21,4 +22,5 @@ export const migrations = [
   historyImports,
   recordings,
   atEarBounds,
+  protectorsAndFit,
 ];

@@ -384,6 +384,7 @@ async function adopt(
         {
           effectiveFrom,
           reason: "First measurement",
+          keepsSpectrum: false,
           targets: levels.map((name) => ({
             position: positionOf(name),
             taskId: known(demo.tasks, taskKey(site, name)).id,
@@ -498,6 +499,7 @@ export async function measureTaskAnew(
     await adoptSurvey(officer, survey, [task], {
       effectiveFrom: date,
       reason: given.reason,
+      keepsSpectrum: true,
       targets: [{ position: 0, taskId: task.id }],
     });
     await setSurveyState(officer, survey, { state: "done", note: given.reason });

@@ -46,6 +46,8 @@ interface LevelSource {
   survey?: LevelSurvey | null;
   /** The recording that it, or its spectrum, comes from. */
   recording?: { recordingId: string; keptReasons: readonly string[] } | null;
+  /** The earlier level of the task whose spectrum it keeps, shifted to the new one. */
+  spectrumOfNumber?: number | null;
 }
 
 /** The row alone, for the change itself and for its preview. */
@@ -53,7 +55,7 @@ export async function insertTaskLevel(
   actor: Actor,
   task: Task,
   input: TaskLevelInput,
-  { under = [], survey = null, recording = null }: LevelSource = {},
+  { under = [], survey = null, recording = null, spectrumOfNumber = null }: LevelSource = {},
 ): Promise<number> {
   const last = await row<{ number: number }>(
     "SELECT coalesce(max(number), 0) AS number FROM task_levels WHERE task_id = :id",
@@ -66,8 +68,8 @@ export async function insertTaskLevel(
   if (issues.length > 0) throw unprocessable(issues);
   const added = await rows<{ id: string }>(
     `INSERT INTO task_levels (organization_id, task_id, number, effective_from, metric, level_db, lc_minus_la_db, octave_bands_db,
-       las_max_db, peak_db, peak_weighting, samples_db, instrument_class, grade, source_note, reason, author_id, survey_id, strategy, kept_reasons, recording_id)
-     VALUES ($1, $2, $3, $4, $5::jsonb, $6, $7, $8::float8[], $9, $10, $11, $12::float8[], $13, $14, $15, $16, $17, $18, $19, $20::text[], $21) RETURNING id`,
+       las_max_db, peak_db, peak_weighting, samples_db, instrument_class, grade, source_note, reason, author_id, survey_id, strategy, kept_reasons, recording_id, impulse_type, spectrum_of_number)
+     VALUES ($1, $2, $3, $4, $5::jsonb, $6, $7, $8::float8[], $9, $10, $11, $12::float8[], $13, $14, $15, $16, $17, $18, $19, $20::text[], $21, $22, $23) RETURNING id`,
     [
       actor.organizationId,
       task.id,
@@ -90,6 +92,8 @@ export async function insertTaskLevel(
       survey?.strategy ?? "task",
       [...(survey?.keptReasons ?? []), ...(recording?.keptReasons ?? [])],
       recording?.recordingId ?? null,
+      input.impulseType,
+      spectrumOfNumber,
     ],
   );
   if (survey)

@@ -1,5 +1,11 @@
+import {
+  lcMinusLaOfSpectrumDb,
+  shiftedSpectrumDb,
+} from "../../shared/acoustics/protection/octave-band";
+import type { OctaveBandValues } from "../../shared/acoustics/types";
 import type { SurveyAdoption, SurveySample, TargetResult } from "../../shared/schemas/survey";
 import { recordAudit } from "../lib/audit";
+import { row } from "../lib/db";
 import { AppError, issue, unprocessable } from "../lib/errors";
 import type { Actor } from "../lib/policy";
 import type { Survey } from "../models/survey";
@@ -58,8 +64,17 @@ export async function insertAdoptedLevels(
     const target = measured.targets[position]!;
     const result = resultOf(measured.strategy, target, samples, measured.groupSize);
     const behind = samplesOf(samples, position);
-    const level = { ...levelOf(result, input), samplesDb: behind.map(({ levelDb }) => levelDb) };
+    const kept =
+      input.keepsSpectrum && result.octaveBandsDb === null
+        ? await keptSpectrum(taskId, input.effectiveFrom, result.levelDb!)
+        : null;
+    const level = {
+      ...levelOf(result, input),
+      ...kept?.facts,
+      samplesDb: behind.map(({ levelDb }) => levelDb),
+    };
     const number = await insertTaskLevel(actor, taskOf.get(taskId)!, level, {
+      spectrumOfNumber: kept?.number ?? null,
       survey: {
         surveyId: survey.id,
         strategy: measured.strategy,
@@ -103,6 +118,30 @@ function levelOf(result: TargetResult, { effectiveFrom, reason }: SurveyAdoption
     effectiveFrom,
     sourceNote: "",
     reason,
+    impulseType: null,
     acceptedDoubts: [],
+  };
+}
+
+/** Bands and LC − LA of the level in force, the bands shifted so that they give the new A-weighted level. */
+async function keptSpectrum(taskId: string, date: string, levelDb: number) {
+  const former = await row<{
+    number: number;
+    octaveBandsDb: OctaveBandValues;
+    lcMinusLaDb: number | null;
+  }>(
+    `SELECT number, octave_bands_db AS "octaveBandsDb", lc_minus_la_db AS "lcMinusLaDb" FROM task_levels
+     WHERE task_id = :taskId AND effective_from <= :date AND octave_bands_db IS NOT NULL ORDER BY effective_from DESC, number DESC LIMIT 1`,
+    { taskId, date },
+  );
+  if (!former) return null;
+  const { number, octaveBandsDb, lcMinusLaDb } = former;
+  const bands = shiftedSpectrumDb(octaveBandsDb, levelDb);
+  return {
+    number,
+    facts: {
+      octaveBandsDb: bands as TargetResult["octaveBandsDb"],
+      lcMinusLaDb: lcMinusLaDb ?? lcMinusLaOfSpectrumDb(octaveBandsDb),
+    },
   };
 }

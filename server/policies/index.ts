@@ -123,6 +123,47 @@ export const assignmentPolicy = policy<AtSite>()({
   can: { change: officerAt },
 });
 
+/** Fit tests, microphone checks and what was issued: a worker's own are the worker's to read. */
+export const fitPolicy = policy<AtSite>()({
+  sees: (actor, f) => [
+    actor.at(`${f}.site_id`, "officer", "auditor"),
+    actor.supervises(`${f}.worker_id`, today),
+    actor.owns(`${f}.worker_id`),
+  ],
+  can: {
+    change: officerAt,
+    test: officerAt,
+    issue: officerAt,
+    end: officerAt,
+    acknowledge: officerAt,
+  },
+});
+
+/** Why somebody refused or cannot wear a device may be a medical reason. */
+export const refusalPolicy = policy<AtSite>()({
+  sees: (actor, r) => [actor.at(`${r}.site_id`, "officer")],
+  can: { change: officerAt },
+});
+
+export const stockPolicy = policy<AtSite>()({
+  sees: (actor, s) => [actor.at(`${s}.site_id`, "officer", "auditor")],
+  can: { change: officerAt },
+});
+
+/** Rounds: an officer makes them at the site, a supervisor among the own crews. */
+export const wearingPolicy = policy<AtSite>()({
+  sees: (actor, r) => [
+    actor.at(`${r}.site_id`, "officer", "auditor"),
+    `${r}.author_id = '${actor.userId}'`,
+  ],
+  can: { strike: officerAt },
+});
+
+export const signalPolicy = policy<AtSite>()({
+  sees: (actor, s) => [actor.at(`${s}.site_id`, "officer", "auditor", "supervisor")],
+  can: { change: officerAt },
+});
+
 /** Findings that a worker reported, or that concern them, are theirs to read; a supervisor acts on own crews'. */
 export const findingPolicy = policy<AtSite>()({
   sees: (actor, f) => [
@@ -171,6 +212,11 @@ const tableOfSubject = {
   "history-import": "history_imports",
   "time-history": "time_histories",
   recording: "recordings",
+  "fit-test": "fit_tests",
+  "microphone-check": "microphone_checks",
+  "protector-issue": "protector_issues",
+  "wearing-round": "wearing_rounds",
+  "warning-signal": "warning_signals",
 };
 
 /** The site an event is about, by its subject. */
@@ -206,6 +252,8 @@ export const may = {
   reportProblem: (actor: Actor) => actor.is("worker"),
   administer: (actor: Actor) => actor.is("administrator"),
   issueCodes: (actor: Actor) => actor.is("officer", "administrator"),
+  /** Rounds through the shop: an officer, or a supervisor among the own crews. */
+  observe: (actor: Actor) => actor.is("officer", "supervisor"),
   readTrail: (actor: Actor) => actor.is("auditor", "administrator"),
   readSites: (actor: Actor) => actor.is("officer", "auditor", "administrator", "supervisor"),
 };

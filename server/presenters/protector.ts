@@ -1,5 +1,9 @@
 import type { z } from "zod";
-import type { ProtectorDetail, ProtectorView } from "../../shared/schemas/protector";
+import {
+  type ProtectorDetail,
+  type ProtectorView,
+  RegisterData,
+} from "../../shared/schemas/protector";
 import { type Actor, abilities } from "../lib/policy";
 import { protectorPolicy } from "../policies";
 import type { ProtectorRevisionRow, ProtectorRow } from "../queries/protectors";
@@ -9,14 +13,8 @@ function presentFacts({ id, number, effectiveFrom, data }: ProtectorRevisionRow)
     id,
     number,
     effectiveFrom,
-    usRatingDb: data.usRatingDb,
-    snrDb: data.snrDb,
-    hDb: data.hDb,
-    mDb: data.mDb,
-    lDb: data.lDb,
-    slc80Db: data.slc80Db,
-    bands: data.bands,
-    active: data.active,
+    // Data of an earlier day name less.
+    ...RegisterData.parse(data),
   };
 }
 

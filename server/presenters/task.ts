@@ -30,6 +30,8 @@ export function presentTaskLevel(row: TaskLevelRow): z.infer<typeof TaskLevelVie
     recordingName: row.recordingName,
     strategy: row.strategy,
     keptReasons: row.keptReasons,
+    impulseType: row.impulseType,
+    spectrumOfNumber: row.spectrumOfNumber,
     samples: row.samples,
     authorName: row.authorName,
     createdAt: row.createdAt.toISOString(),

@@ -1,4 +1,6 @@
+import type { z } from "zod";
 import type { TaskLevel, Unaccounted } from "../../shared/acoustics/types";
+import type { Attenuation } from "../../shared/schemas/evaluation";
 import type { DayGridView, GridRow, ShiftTaskInput } from "../../shared/schemas/shift";
 import { todayAt } from "../lib/calendar";
 import { row, rows } from "../lib/db";
@@ -6,6 +8,7 @@ import type { Crew } from "../models/worker";
 import { dayFiguresOf } from "./day-figures";
 import { LEVEL_COLUMNS, PROTECTOR_COLUMNS, toProtector, toTaskLevel } from "./day-inputs";
 import { entryNotices } from "./entry-notices";
+import { activeCheckInForce, combinationInForce, fitInForce, wearingSeen } from "./own-attenuation";
 import { presentSavedShift, readingsOfDay, savedShifts } from "./saved-shifts";
 import { settingsInForce } from "./site-settings";
 
@@ -177,12 +180,21 @@ export interface AssignmentOn {
   areaId: string | null;
   innerModelId: string;
   outerModelId: string | null;
+  ownFitDb: number | null;
+  activeCheckPassed: boolean;
+  combinationBands: z.infer<typeof Attenuation> | null;
+  audioDb: number | null;
 }
 
 export async function assignmentsOn(workerIds: string, date: string): Promise<AssignmentOn[]> {
   return rows<AssignmentOn>(
-    `SELECT id, worker_id AS "workerId", task_id AS "taskId", area_id AS "areaId", inner_model_id AS "innerModelId", outer_model_id AS "outerModelId"
-     FROM assignments WHERE worker_id = ANY (CAST(:ids AS uuid[])) AND valid @> CAST(:date AS date)`,
+    `SELECT a.id, a.worker_id AS "workerId", a.task_id AS "taskId", a.area_id AS "areaId", a.inner_model_id AS "innerModelId", a.outer_model_id AS "outerModelId",
+       a.audio_db AS "audioDb", fit.par_db AS "ownFitDb", coalesce(active.active_passed, FALSE) AS "activeCheckPassed", pair.bands AS "combinationBands"
+     FROM assignments a
+     LEFT JOIN fit_test_revisions fit ON a.outer_model_id IS NULL AND fit.id = ${fitInForce("a.worker_id", "a.inner_model_id", "a.size", "CAST(:date AS date)")}
+     LEFT JOIN fit_test_revisions active ON a.outer_model_id IS NULL AND active.id = ${activeCheckInForce("a.worker_id", "a.inner_model_id", "a.size", "CAST(:date AS date)")}
+     LEFT JOIN protector_combinations pair ON pair.id = ${combinationInForce("a.inner_model_id", "a.outer_model_id", "CAST(:date AS date)")}
+     WHERE a.worker_id = ANY (CAST(:ids AS uuid[])) AND a.valid @> CAST(:date AS date)`,
     { ids: workerIds, date },
   );
 }
@@ -199,19 +211,29 @@ export async function modelsOn(modelIds: readonly string[], date: string) {
   return found.map(toProtector);
 }
 
+/** The wearing time that a task is entered with unless somebody says otherwise. */
 export async function lastWearing(
   ids: string,
   date: string,
 ): Promise<Map<string, Record<string, number>>> {
-  const found = await rows<{ workerId: string; taskId: string; wornPct: number }>(
+  const typed = await rows<{ workerId: string; taskId: string; wornPct: number }>(
     `SELECT DISTINCT ON (s.worker_id, t.task_id) s.worker_id AS "workerId", t.task_id AS "taskId", t.worn_pct AS "wornPct"
      FROM shifts s JOIN shift_tasks t ON t.shift_revision_id = s.current_revision_id
      WHERE s.worker_id = ANY (CAST(:ids AS uuid[])) AND s.date < CAST(:date AS date) AND s.date >= CAST(:date AS date) - 92 AND NOT s.is_void AND t.worn_pct IS NOT NULL
      ORDER BY s.worker_id, t.task_id, s.date DESC`,
     { ids, date },
   );
+  const looked = await rows<{ workerId: string; taskId: string; seen: [number, number] }>(
+    `SELECT x.worker_id AS "workerId", x.task_id AS "taskId", ${wearingSeen("x.worker_id", "x.task_id", "CAST(:date AS date)")} AS seen
+     FROM (SELECT DISTINCT worker_id, task_id FROM wearing_looks WHERE worker_id = ANY (CAST(:ids AS uuid[]))) x`,
+    { ids, date },
+  );
+  const seenPct = looked.flatMap(({ workerId, taskId, seen }) =>
+    seen ? [{ workerId, taskId, wornPct: (100 * seen[0]) / seen[1] }] : [],
+  );
   return nest(
-    found,
+    // What was seen comes before what was typed.
+    [...typed, ...seenPct],
     ({ workerId }) => workerId,
     ({ taskId, wornPct }) => [taskId, wornPct],
   );

@@ -1,4 +1,5 @@
 import type {
+  BandAttenuation,
   DayInput,
   MeterSettings,
   OctaveBandValues,
@@ -15,6 +16,7 @@ import { ruleSetInForce, ruleSetVersion } from "../../shared/rule-sets";
 import type { ProtectorFacts } from "../../shared/schemas/evaluation";
 import { rows } from "../lib/db";
 import { groupBy } from "../lib/group-by";
+import { activeCheckInForce, combinationInForce, fitInForce, wearingSeen } from "./own-attenuation";
 
 export interface DayKey {
   workerId: string;
@@ -35,10 +37,24 @@ export interface DayRefs {
       id: string;
       levelId: string | null;
       zone: Zone;
-      use: { id: string; inner: string | null; outer: string | null } | null;
+      use: UseRefs | null;
+      /** Times seen wearing it, and seen at all, where the shift itself says nothing. */
+      seen?: [worn: number, seen: number];
     }[];
     runRevisionIds: string[];
   }[];
+}
+
+/** What is worn, and what is known of it on this worker. What is not there is not named: earlier results name neither. */
+export interface UseRefs {
+  id: string;
+  inner: string | null;
+  outer: string | null;
+  /** Revisions of fit tests. */
+  fit?: string;
+  check?: string;
+  combination?: string;
+  audioDb?: number;
 }
 
 export interface ResolvedDay extends DayKey {
@@ -62,6 +78,11 @@ interface ShiftTaskRow {
   innerRevisionId: string | null;
   outerModelId: string | null;
   outerRevisionId: string | null;
+  fitId: string | null;
+  checkId: string | null;
+  combinationId: string | null;
+  audioDb: number | null;
+  seen: [number, number] | null;
 }
 
 /**
@@ -90,14 +111,18 @@ export async function resolveDays(days: readonly DayKey[]): Promise<ResolvedDay[
        (SELECT l.id FROM task_levels l WHERE l.task_id = t.task_id AND l.effective_from <= w.date
         ORDER BY l.effective_from DESC, l.number DESC LIMIT 1) AS "levelId",
        u.id AS "assignmentId", ${modelRevision("u.inner_model_id")} AS "innerRevisionId",
-       u.outer_model_id AS "outerModelId", ${modelRevision("u.outer_model_id")} AS "outerRevisionId"
+       u.outer_model_id AS "outerModelId", ${modelRevision("u.outer_model_id")} AS "outerRevisionId", u.audio_db AS "audioDb",
+       CASE WHEN u.outer_model_id IS NULL THEN ${fitInForce("w.worker_id", "u.inner_model_id", "u.size", "w.date")} END AS "fitId",
+       CASE WHEN u.outer_model_id IS NULL THEN ${activeCheckInForce("w.worker_id", "u.inner_model_id", "u.size", "w.date")} END AS "checkId",
+       CASE WHEN u.outer_model_id IS NOT NULL THEN ${combinationInForce("u.inner_model_id", "u.outer_model_id", "w.date")} END AS "combinationId",
+       CASE WHEN t.worn_pct IS NULL AND u.id IS NOT NULL THEN ${wearingSeen("w.worker_id", "t.task_id", "w.date")} END AS seen
      FROM wanted w
      JOIN shifts s ON s.worker_id = w.worker_id AND s.date = w.date AND NOT s.is_void
      LEFT JOIN shift_tasks t ON t.shift_revision_id = s.current_revision_id
      LEFT JOIN tasks k ON k.id = t.task_id
      LEFT JOIN areas a ON a.id = k.area_id
      LEFT JOIN LATERAL (
-       SELECT x.id, x.inner_model_id, x.outer_model_id FROM assignments x
+       SELECT x.id, x.inner_model_id, x.outer_model_id, x.size, x.audio_db FROM assignments x
        WHERE x.worker_id = w.worker_id AND x.valid @> w.date
          AND (x.task_id = t.task_id OR x.area_id = k.area_id OR (x.task_id IS NULL AND x.area_id IS NULL))
        ORDER BY (x.task_id IS NOT NULL) DESC, (x.area_id IS NOT NULL) DESC LIMIT 1) u ON TRUE
@@ -172,14 +197,8 @@ export async function resolveDays(days: readonly DayKey[]): Promise<ResolvedDay[
                   id: row.timedTaskId,
                   levelId: row.levelId,
                   zone: row.zone,
-                  use:
-                    row.assignmentId === null
-                      ? null
-                      : {
-                          id: row.assignmentId,
-                          inner: row.innerRevisionId,
-                          outer: row.outerRevisionId,
-                        },
+                  use: refsOfUse(row),
+                  ...(row.seen && { seen: row.seen }),
                 },
               ],
         ),
@@ -203,8 +222,25 @@ export async function resolveDays(days: readonly DayKey[]): Promise<ResolvedDay[
   );
 }
 
+function refsOfUse(row: ShiftTaskRow): UseRefs | null {
+  if (row.assignmentId === null) return null;
+  return {
+    id: row.assignmentId,
+    inner: row.innerRevisionId,
+    outer: row.outerRevisionId,
+    ...(row.fitId !== null && { fit: row.fitId }),
+    ...(row.checkId !== null && { check: row.checkId }),
+    ...(row.combinationId !== null && { combination: row.combinationId }),
+    ...(row.audioDb !== null && { audioDb: row.audioDb }),
+  };
+}
+
 interface LevelRow
-  extends Omit<TaskLevel, "revisionId" | "peak" | "octaveBandsDb" | "strategy" | "keptReasons"> {
+  extends Omit<
+    TaskLevel,
+    "revisionId" | "peak" | "octaveBandsDb" | "strategy" | "keptReasons" | "impulseType"
+  > {
+  impulseType: 1 | 2 | 3 | null;
   id: string;
   strategy: NonNullable<TaskLevel["strategy"]>;
   keptReasons: string[];
@@ -217,7 +253,7 @@ export const LEVEL_COLUMNS = (
   l: string,
 ) => `${l}.id, ${l}.metric, ${l}.level_db AS "levelDb", ${l}.lc_minus_la_db AS "lcMinusLaDb",
   ${l}.octave_bands_db AS "octaveBandsDb", ${l}.las_max_db AS "lasMaxDb", ${l}.peak_db AS "peakDb", ${l}.peak_weighting AS "peakWeighting",
-  ${l}.samples_db AS "samplesDb", ${l}.instrument_class AS instrument, ${l}.grade, ${l}.strategy, ${l}.kept_reasons AS "keptReasons"`;
+  ${l}.samples_db AS "samplesDb", ${l}.instrument_class AS instrument, ${l}.grade, ${l}.strategy, ${l}.kept_reasons AS "keptReasons", ${l}.impulse_type AS "impulseType"`;
 
 export function toTaskLevel(row: LevelRow): TaskLevel {
   const { id, peakDb, peakWeighting, ...facts } = row;
@@ -315,6 +351,14 @@ export async function hydrateDays(
     uses.flatMap(({ inner, outer }) => [inner, outer]),
     `SELECT ${PROTECTOR_COLUMNS} FROM protector_model_revisions p JOIN protector_models m ON m.id = p.model_id WHERE p.id = ANY ($1::uuid[])`,
   );
+  const tests = await byId<{ id: string; parDb: number | null; activePassed: boolean | null }>(
+    uses.flatMap(({ fit, check }) => [fit ?? null, check ?? null]),
+    `SELECT id, par_db AS "parDb", active_passed AS "activePassed" FROM fit_test_revisions WHERE id = ANY ($1::uuid[])`,
+  );
+  const combinations = await byId<{ id: string; bands: BandAttenuation }>(
+    uses.map(({ combination }) => combination ?? null),
+    "SELECT id, bands FROM protector_combinations WHERE id = ANY ($1::uuid[])",
+  );
   const settings = await byId<{
     id: string;
     wearFromDb: number;
@@ -345,6 +389,7 @@ export async function hydrateDays(
     levelId,
     zone,
     use,
+    seen,
   }: DayRefs["shifts"][number]["tasks"][number]): TimedTask => {
     const task = timed.get(id)!;
     const level = levelId === null ? null : levels.get(levelId);
@@ -363,12 +408,13 @@ export async function hydrateDays(
               assignmentId: use.id,
               inner: toProtector(inner),
               outer: outer ? toProtector(outer) : null,
-              combinationBands: null,
-              ownFitDb: null,
-              activeCheckPassed: false,
+              combinationBands: combinations.get(use.combination ?? "")?.bands ?? null,
+              ownFitDb: tests.get(use.fit ?? "")?.parDb ?? null,
+              activeCheckPassed: tests.get(use.check ?? "")?.activePassed ?? false,
+              audioDb: use.audioDb ?? null,
             }
           : null,
-      wornPct: task.wornPct,
+      wornPct: task.wornPct ?? (seen ? (100 * seen[0]) / seen[1] : null),
       wornIsShiftWide: task.wornIsShiftWide,
     };
   };

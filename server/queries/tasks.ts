@@ -41,6 +41,7 @@ export async function listTaskLevels(
          l.peak_weighting AS "peakWeighting", l.samples_db AS "samplesDb", l.instrument_class AS instrument, l.grade,
          l.source_note AS "sourceNote", l.reason, u.name AS "authorName", l.created_at AS "createdAt",
          l.survey_id AS "surveyId", y.name AS "surveyName", l.recording_id AS "recordingId", c.file_name AS "recordingName", l.strategy, l.kept_reasons AS "keptReasons",
+         l.impulse_type AS "impulseType", l.spectrum_of_number AS "spectrumOfNumber",
          coalesce((SELECT json_agg(json_build_object('runId', p.run_id, 'date', r.date::text, 'levelDb', p.level_db, 'fromS', p.from_s, 'toS', p.to_s)
            ORDER BY p.position) FROM task_level_samples p JOIN runs r ON r.id = p.run_id WHERE p.task_level_id = l.id), '[]') AS samples,
          l.id IS NOT DISTINCT FROM (

@@ -65,6 +65,13 @@ export const SOURCES = {
     note: "Tables in a reprint.",
     status: "reprint",
   },
+  "ansi-s12.68": {
+    title:
+      /*i18n*/ "ANSI/ASA S12.68, Methods of estimating effective A-weighted sound pressure levels when hearing protectors are worn",
+    edition: "2007",
+    note: "The rating pair is taken from the label; its use from memory.",
+    status: "from-memory",
+  },
   "as-nzs-1270": {
     title: /*i18n*/ "AS/NZS 1270, Acoustic hearing protectors",
     edition: "2002",

@@ -71,6 +71,8 @@ export interface TaskLevel {
   readonly strategy?: SurveyStrategy;
   /** The officer's reasons for samples, or too few of them, that count all the same; absent: none. */
   readonly keptReasons?: readonly string[];
+  /** EN 458's type of an impulse noise: 1 mostly low, 2 middle and high, 3 high frequencies. Absent: not said. */
+  readonly impulseType?: 1 | 2 | 3 | null;
 }
 
 export type ProtectorKind =
@@ -89,6 +91,21 @@ export type ProtectorKind =
 export interface BandAttenuation {
   readonly meanDb: OctaveBandValues;
   readonly sdDb: OctaveBandValues;
+}
+
+/** Test frequencies of the US label, Hz. @source epa-40-cfr-211.206 */
+export const US_LABEL_HZ = [125, 250, 500, 1000, 2000, 3150, 4000, 6300, 8000] as const;
+
+/** Real-ear attenuation at `US_LABEL_HZ`: mean and standard deviation, dB. */
+export interface UsLabelAttenuation {
+  readonly meanDb: readonly number[];
+  readonly sdDb: readonly number[];
+}
+
+/** A percentile rating pair off the label, dB: what most users (80 %) and what few (20 %) reach or pass. */
+export interface PercentileRating {
+  readonly mostDb: number;
+  readonly fewDb: number;
 }
 
 /** The electronic part of an active protector, apart from its cup or plug. */
@@ -119,6 +136,11 @@ export interface ProtectorData {
   readonly slc80Db: number | null;
   readonly bands: BandAttenuation | null;
   readonly active: ActivePart | null;
+  /** Absent or null: not stated. */
+  readonly percentile?: PercentileRating | null;
+  readonly usLabel?: UsLabelAttenuation | null;
+  /** By test subject, each the mean of the subject's trials, for ratings by the standard's later edition. */
+  readonly subjectsDb?: readonly OctaveBandValues[] | null;
 }
 
 /** One protector, or two worn together, as assigned for a use. */
@@ -131,6 +153,8 @@ export interface Protection {
   /** The worker's own measured attenuation (PAR), dB, with the confidence it is stated at. */
   readonly ownFitDb: number | null;
   readonly activeCheckPassed: boolean;
+  /** A-weighted level of a radio or signal under the cup while it is worn, dB. Absent or null: none. */
+  readonly audioDb?: number | null;
 }
 
 export type Zone = "none" | "single" | "double";
@@ -220,6 +244,7 @@ export type AttenuationMethod =
   | "hml"
   | "snr"
   | "us-single-number"
+  | "percentile"
   | "slc80"
   | "own-fit";
 

@@ -107,6 +107,8 @@ function methodFormula(
       );
     case "slc80":
       return offC(taskLevel, lcMinusLaDb(taskLevel)!, [symbol("SLC", "80")], inner.slc80Db!);
+    case "percentile":
+      return off(taskLevel, symbol("NRS", "A80"), inner.percentile!.mostDb);
     case "own-fit":
       return off(taskLevel, symbol("PAR"), protection.ownFitDb!);
     case "us-single-number":

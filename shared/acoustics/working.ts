@@ -1271,6 +1271,7 @@ const METHOD_SOURCES: Readonly<Record<AttenuationMethod, WorkingSource>> = {
   hml: { id: "iso-4869-2", clause: "7" },
   snr: { id: "iso-4869-2", clause: "8" },
   "us-single-number": { id: "osha-1910.95", clause: /*i18n*/ "App. B" },
+  percentile: { id: "ansi-s12.68", clause: "6" },
   slc80: { id: "as-nzs-1270", clause: /*i18n*/ "App. A" },
   "own-fit": { id: null, clause: "" },
 };

@@ -1,4 +1,5 @@
 import type {
+  BandAttenuation,
   DayInput,
   Protection,
   ProtectorData,
@@ -24,6 +25,11 @@ export interface KnownAssignment {
   areaId: string | null;
   innerModelId: string;
   outerModelId: string | null;
+  /** What is known of it on this worker. */
+  ownFitDb: number | null;
+  activeCheckPassed: boolean;
+  combinationBands: BandAttenuation | null;
+  audioDb: number | null;
 }
 
 export interface EnteredTask {
@@ -72,9 +78,10 @@ function protectionOf(
     assignmentId: assignment.id,
     inner,
     outer,
-    combinationBands: null,
-    ownFitDb: null,
-    activeCheckPassed: false,
+    combinationBands: assignment.combinationBands,
+    ownFitDb: assignment.ownFitDb,
+    activeCheckPassed: assignment.activeCheckPassed,
+    audioDb: assignment.audioDb,
   };
 }
 

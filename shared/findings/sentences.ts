@@ -1,5 +1,6 @@
 import type { I18n } from "@lingui/core";
 import type { ProtectorWord } from "../acoustics/types";
+import { formatDate } from "../format/date";
 import { formatDose } from "../format/dose";
 import { formatDuration } from "../format/duration";
 import { formatLevel, formatLevelChange, formatLimit } from "../format/level";
@@ -114,6 +115,14 @@ export function orderSentence(
         : i18n.t("Book the calibration");
     case "problem-reported":
       return i18n.t("Talk to the worker about it");
+    case "fit-failed":
+      return textOf(facts, "protector")
+        ? i18n.t("Fit {protector} anew, or try another", {
+            protector: textOf(facts, "protector") ?? "",
+          })
+        : i18n.t("Fit it anew, or try another");
+    case "fit-due":
+      return i18n.t("Test the fit");
   }
 }
 
@@ -233,6 +242,26 @@ export function noticedSentence(
     case "problem-reported": {
       const text = textOf(facts, "text");
       return text ? i18n.t("“{text}”", { text }) : i18n.t("The worker reported a problem");
+    }
+    case "fit-failed": {
+      const needDb = numberOf(facts, "needDb");
+      const parDb = numberOf(facts, "parDb");
+      return needDb === null || parDb === null
+        ? i18n.t("{protector} does not fit well enough", { protector })
+        : i18n.t("{protector} takes {par} dB off on this worker, {need} are needed", {
+            protector,
+            par: formatLevel(parDb, locale),
+            need: formatLevel(needDb, locale),
+          });
+    }
+    case "fit-due": {
+      const testedOn = textOf(facts, "testedOn");
+      return testedOn === null
+        ? i18n.t("The fit of {protector} was never tested", { protector })
+        : i18n.t("The fit of {protector} was last tested on {date}", {
+            protector,
+            date: formatDate(testedOn, locale),
+          });
     }
   }
 }

@@ -32,6 +32,10 @@ export function findingWord(i18n: I18n, kind: FindingKind): string {
       return i18n.t("Instrument");
     case "problem-reported":
       return i18n.t("Problem reported");
+    case "fit-failed":
+      return i18n.t("Does not fit");
+    case "fit-due":
+      return i18n.t("Fit test due");
   }
 }
 

@@ -60,6 +60,14 @@ export function workerSentence(
       return i18n.t("Tell your supervisor how long you wear your protector.");
     case "peak-or-ceiling":
       return peakSentence(i18n, locale, facts);
+    case "fit-failed":
+      return protector
+        ? i18n.t("{protector} does not fit you well enough. Ask your supervisor to fit it anew.", {
+            protector,
+          })
+        : i18n.t("Your protector does not fit you well enough. Ask for it to be fitted anew.");
+    case "fit-due":
+      return i18n.t("Your protector’s fit is to be tested. Your supervisor will tell you when.");
     case "time-not-accounted":
       return i18n.t(
         "Tell your supervisor what you did in the time that is missing from your shift.",

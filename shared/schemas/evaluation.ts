@@ -13,6 +13,7 @@ import type {
   TaskLevel,
   TimedTask,
 } from "../acoustics/types";
+import { US_LABEL_HZ } from "../acoustics/types";
 import { IsoDate, LevelDb } from "./common";
 
 const db = z.number().min(-40).max(200);
@@ -74,6 +75,10 @@ export const TaskLevelFacts = z.object({
   samplesDb: z.array(LevelDb).max(200).default([]),
   instrument: InstrumentClassName.nullable().default(null),
   grade: GradeName,
+  impulseType: z
+    .union([z.literal(1), z.literal(2), z.literal(3)])
+    .nullable()
+    .default(null),
 });
 
 const Level = as<TaskLevel>()(
@@ -101,6 +106,8 @@ export const Active = as<ActivePart>()(
 
 const rating = z.number().min(0).max(60).nullable();
 
+const nine = z.array(z.number().min(-20).max(80)).length(US_LABEL_HZ.length);
+
 /** What the certificate and the test reports say of a model. */
 export const ProtectorFacts = z.object({
   usRatingDb: rating.default(null),
@@ -111,6 +118,13 @@ export const ProtectorFacts = z.object({
   slc80Db: rating.default(null),
   bands: Attenuation.nullable().default(null),
   active: Active.nullable().default(null),
+  percentile: z
+    .object({ mostDb: z.number().min(0).max(60), fewDb: z.number().min(0).max(60) })
+    .nullable()
+    .default(null),
+  usLabel: z.object({ meanDb: nine, sdDb: nine }).nullable().default(null),
+  /** By test subject; two or more. */
+  subjectsDb: z.array(OctaveBands).min(2).max(40).nullable().default(null),
 });
 export type ProtectorFacts = z.infer<typeof ProtectorFacts>;
 
@@ -129,6 +143,7 @@ const ProtectionInput = z.object({
   combinationBands: Attenuation.nullable().default(null),
   ownFitDb: z.number().min(0).max(60).nullable().default(null),
   activeCheckPassed: z.boolean().default(false),
+  audioDb: z.number().min(20).max(120).nullable().default(null),
 }) as unknown as z.ZodType<Protection>;
 
 const Timed = z.object({

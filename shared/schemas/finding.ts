@@ -16,6 +16,8 @@ export const FINDING_KINDS = [
   "reading-missing",
   "instrument",
   "problem-reported",
+  "fit-failed",
+  "fit-due",
 ] as const;
 export const FindingKind = z.enum(FINDING_KINDS);
 export type FindingKind = z.infer<typeof FindingKind>;

@@ -1,6 +1,7 @@
 import { z } from "zod";
 import { Can, IsoDate, Name, Reason } from "./common";
 import { ProtectorFacts, ProtectorKindName } from "./evaluation";
+import { Size } from "./fit";
 
 type Context = { value: z.infer<typeof ProtectorFacts>; issues: unknown[] };
 
@@ -23,7 +24,25 @@ function plausible(context: Context): void {
     add(["active", "gain"], "delay-and-gain-together");
 }
 
-export const ProtectorRevisionInput = ProtectorFacts.extend({
+/** What a certificate says beside its numbers. */
+export const ProtectorUse = z.object({
+  sizes: z.array(Size).max(12).default([]),
+  /** False: not to be worn together with it; null: not stated. */
+  worksWith: z
+    .object({
+      helmet: z.boolean().nullable(),
+      glasses: z.boolean().nullable(),
+      respirator: z.boolean().nullable(),
+    })
+    .default({ helmet: null, glasses: null, respirator: null }),
+  cushionsEveryDays: z.number().int().min(1).max(3650).nullable().default(null),
+  tipsEveryDays: z.number().int().min(1).max(3650).nullable().default(null),
+  auClass: z.number().int().min(1).max(5).nullable().default(null),
+});
+export type ProtectorUse = z.infer<typeof ProtectorUse>;
+export const RegisterData = ProtectorFacts.extend(ProtectorUse.shape);
+
+export const ProtectorRevisionInput = RegisterData.extend({
   effectiveFrom: IsoDate,
   reason: Reason.nullable().default(null),
 }).check((context) => plausible(context as unknown as Context));
@@ -39,7 +58,7 @@ export const NewProtectorInput = ProtectorInput.extend({ data: ProtectorRevision
 export const ProtectorView = ProtectorInput.extend({
   id: z.uuid(),
   revision: z.number(),
-  data: ProtectorFacts.extend({ id: z.uuid(), number: z.number(), effectiveFrom: IsoDate }),
+  data: RegisterData.extend({ id: z.uuid(), number: z.number(), effectiveFrom: IsoDate }),
   wearersToday: z.number(),
   can: Can("change"),
 });
@@ -47,7 +66,7 @@ export type ProtectorView = z.infer<typeof ProtectorView>;
 export const ProtectorList = z.object({ rows: z.array(ProtectorView) });
 export const ProtectorDetail = ProtectorView.extend({
   history: z.array(
-    ProtectorFacts.extend({
+    RegisterData.extend({
       id: z.uuid(),
       number: z.number(),
       effectiveFrom: IsoDate,

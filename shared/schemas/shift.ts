@@ -1,7 +1,7 @@
 import { z } from "zod";
 import type { ProtectorData, TaskLevel } from "../acoustics/types";
 import { IsoDate, Reason, TimeOfDay } from "./common";
-import { ReadingFacts, UnaccountedInput } from "./evaluation";
+import { Attenuation, ReadingFacts, UnaccountedInput } from "./evaluation";
 import { DayFigures } from "./finding";
 import { EntryNotices } from "./notice";
 import { InstrumentView } from "./run";
@@ -145,6 +145,10 @@ export const GridRow = z.object({
       areaId: z.uuid().nullable(),
       innerModelId: z.uuid(),
       outerModelId: z.uuid().nullable(),
+      ownFitDb: z.number().nullable(),
+      activeCheckPassed: z.boolean(),
+      combinationBands: Attenuation.nullable(),
+      audioDb: z.number().nullable(),
     }),
   ),
   /** Last wearing time recorded per task. */

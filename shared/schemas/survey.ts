@@ -247,6 +247,8 @@ export const SurveyFilter = PageQuery.extend({
 export const SurveyAdoption = z.object({
   effectiveFrom: IsoDate,
   reason: Reason,
+  /** A result without octave bands keeps those of the task's level in force, shifted to the new level. */
+  keepsSpectrum: z.boolean().default(false),
   /** Which task a job-based or full-day result stands for; a task-based one names its own tasks. */
   targets: z
     .array(z.object({ position: z.number().int().min(0), taskId: z.uuid() }))

@@ -27,6 +27,8 @@ export const TaskLevelView = DatedLevel.extend({
   recordingName: z.string().nullable(),
   strategy: z.enum(["task", "job", "full-day"]),
   keptReasons: z.array(z.string()),
+  /** The earlier level whose spectrum it keeps, shifted. */
+  spectrumOfNumber: z.number().nullable(),
   samples: z.array(
     z.object({
       runId: z.uuid(),

@@ -91,6 +91,9 @@ function reductionsOfOne(level: TaskLevel, data: ProtectorData, rule: Protection
       reason: null,
     });
   }
+  if (data.percentile) {
+    found.push({ method: "percentile", reductionDb: data.percentile.mostDb, reason: null });
+  }
   if (data.slc80Db !== null) found.push(byRating("slc80", data.slc80Db, lcLaDb));
   return found;
 }

@@ -48,6 +48,15 @@ export function weightedSumDb(
   return 10 * Math.log10(sum);
 }
 
+/** A spectrum raised or lowered as a whole so that its A-weighted sum is `levelDb`, dB. */
+export function shiftedSpectrumDb(spectrumDb: OctaveBandValues, levelDb: number): OctaveBandValues {
+  const byDb = levelDb - weightedSumDb(spectrumDb, A_WEIGHTING_DB);
+  return mapBands((band) => {
+    const bandDb = spectrumDb[band] ?? null;
+    return bandDb === null ? null : bandDb + byDb;
+  });
+}
+
 /** LC − LA of a spectrum, dB. */
 export function lcMinusLaOfSpectrumDb(spectrumDb: OctaveBandValues): number {
   return weightedSumDb(spectrumDb, C_WEIGHTING_DB) - weightedSumDb(spectrumDb, A_WEIGHTING_DB);

@@ -62,7 +62,17 @@ export function gridRow(number: number, more: Partial<GridRow> = {}): GridRow {
       { taskId: TASK.control, durationMin: 300 },
     ],
     assignments: [
-      { id: id(40), taskId: null, areaId: null, innerModelId: id(20), outerModelId: null },
+      {
+        id: id(40),
+        taskId: null,
+        areaId: null,
+        innerModelId: id(20),
+        outerModelId: null,
+        ownFitDb: null,
+        activeCheckPassed: false,
+        combinationBands: null,
+        audioDb: null,
+      },
     ],
     lastWorn: { [TASK.runUp]: 100 },
     longestMin: {},

@@ -28,6 +28,8 @@ export function methodText(i18n: I18n, method: AttenuationMethod): string {
       return "SNR";
     case "us-single-number":
       return i18n.t("US single number");
+    case "percentile":
+      return i18n.t("Percentile rating");
     case "slc80":
       return "SLC80";
     case "own-fit":

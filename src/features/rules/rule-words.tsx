@@ -101,6 +101,8 @@ export function methodWord(i18n: I18n, method: Protection["methods"][number]): s
       return i18n.t("SNR");
     case "us-single-number":
       return i18n.t("US single number");
+    case "percentile":
+      return i18n.t("percentile rating");
     case "slc80":
       return i18n.t("SLC80");
     case "own-fit":

@@ -37,6 +37,7 @@ export function AdoptionForm({
     defaultValues: {
       effectiveFrom: today,
       reason: "",
+      keepsSpectrum: measured.some(({ octaveBandsDb }) => octaveBandsDb === null),
       targets: measured.flatMap(({ position, taskId }) =>
         taskId === null ? [] : [{ position, taskId }],
       ),
@@ -54,6 +55,7 @@ export function AdoptionForm({
     },
   });
   const targets = form.watch("targets");
+  const keepsSpectrum = form.watch("keepsSpectrum");
   const put = (next: typeof targets) =>
     form.setValue("targets", next, {
       shouldDirty: true,
@@ -94,7 +96,9 @@ export function AdoptionForm({
                 `${formatLevel(result.levelDb, locale)} dB(A)`,
                 result.asksFor === null ? null : nextWords(i18n, result),
                 result.octaveBandsDb === null
-                  ? i18n.t("no octave bands: methods that need them are not assessed")
+                  ? keepsSpectrum
+                    ? i18n.t("no octave bands: those of its present level are kept, shifted")
+                    : i18n.t("no octave bands: methods that need them are not assessed")
                   : null,
               ]
                 .filter(Boolean)
@@ -151,6 +155,19 @@ export function AdoptionForm({
             })
           }
         </Field>
+        {measured.some(({ octaveBandsDb }) => octaveBandsDb === null) && (
+          <label className="choice">
+            <input type="checkbox" {...form.register("keepsSpectrum")} />
+            <span>
+              {i18n.t("Keep the present octave bands where none were measured")}
+              <span className="beneath block">
+                {i18n.t(
+                  "Raised or lowered as a whole to the new level. Right where the same machine makes the noise.",
+                )}
+              </span>
+            </span>
+          </label>
+        )}
         <DateField
           form={form}
           name="effectiveFrom"

@@ -7,7 +7,15 @@ import { paths } from "../../paths";
 /** Where a spectrum in force comes from: a recording, a survey, or whoever typed it. */
 export function SpectrumSource({ level }: { level: z.infer<typeof TaskLevelView> }) {
   const { i18n } = useLingui();
-  const { recordingId, surveyId, authorName } = level;
+  const { recordingId, surveyId, authorName, spectrumOfNumber } = level;
+  if (spectrumOfNumber !== null)
+    return (
+      <p>
+        {i18n.t("Kept from level {number} of this task, shifted as a whole to the new level.", {
+          number: spectrumOfNumber,
+        })}
+      </p>
+    );
   if (recordingId !== null)
     return (
       <p>

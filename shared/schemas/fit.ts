@@ -1,0 +1,285 @@
+import { z } from "zod";
+import { Can, IsoDate, PageQuery, pageOf, Reason } from "./common";
+import { OctaveBands } from "./evaluation";
+
+export const FIT_METHODS = ["psychophysical", "real-ear-microphones", "two-microphones"] as const;
+export const FitMethod = z.enum(FIT_METHODS);
+export type FitMethod = z.infer<typeof FitMethod>;
+
+export const CONFIDENCE_PCT = [50, 84, 90, 95, 98] as const;
+export const ConfidencePct = z.union(CONFIDENCE_PCT.map((pct) => z.literal(pct)));
+export const Size = z.string().trim().min(1).max(20);
+export const Ear = z.enum(["left", "right"]);
+export type Ear = z.infer<typeof Ear>;
+const TrialDb = z.number().min(-20).max(80);
+
+/** What was done and found, by ear: each trial is one donning, its attenuation as a single figure, dB. */
+export const FitFacts = z.object({
+  leftDb: z.array(TrialDb).max(10),
+  rightDb: z.array(TrialDb).max(10),
+  /** The method's own standard uncertainty, dB. */
+  methodSdDb: z.number().min(0).max(20),
+  /** Of a two-microphone check, by ear. */
+  bands: z
+    .object({
+      left: z.lazy(() => EarBands).nullable(),
+      right: z.lazy(() => EarBands).nullable(),
+    })
+    .nullable()
+    .default(null),
+});
+export type FitFacts = z.infer<typeof FitFacts>;
+
+/** What two microphones found at one ear. Null: too little noise or coherence in the band. */
+const BandOrNull = z.array(z.number().nullable()).length(8);
+export const EarBands = z.object({
+  /** Outside less inside, active part off, dB. */
+  noiseReductionDb: BandOrNull,
+  /** Noise reduction with the correction to the open ear added, dB. */
+  attenuationDb: BandOrNull,
+  /** With the active part on less with it off, dB; null: no such pair. */
+  activeDb: BandOrNull.nullable(),
+});
+export type EarBands = z.infer<typeof EarBands>;
+
+/** At least one trial at one ear. */
+function someTrial(context: { value: { facts: FitFacts }; issues: unknown[] }): void {
+  const { leftDb, rightDb } = context.value.facts;
+  if (leftDb.length + rightDb.length === 0)
+    context.issues.push({
+      code: "custom",
+      input: context.value.facts,
+      path: ["facts", "leftDb"],
+      params: { code: "no-trial" },
+    });
+}
+
+const FitEntry = z.object({
+  testedOn: IsoDate,
+  method: FitMethod,
+  size: Size.nullable().default(null),
+  facts: FitFacts,
+  confidencePct: ConfidencePct,
+  /** What the worker's noise asks for, dB; null: not known, and nothing to pass. */
+  needDb: z.number().min(0).max(80).nullable(),
+  note: z.string().trim().max(10_000).default(""),
+});
+export const FitTestInput = FitEntry.extend({ modelId: z.uuid() }).check((context) =>
+  someTrial(context as unknown as Parameters<typeof someTrial>[0]),
+);
+export type FitTestInput = z.infer<typeof FitTestInput>;
+export const FitTestChange = FitEntry.omit({ testedOn: true })
+  .extend({ reason: Reason })
+  .check((context) => someTrial(context as unknown as Parameters<typeof someTrial>[0]));
+export type FitTestChange = z.infer<typeof FitTestChange>;
+export const FitTestVoid = z.object({ reason: Reason });
+
+export const FitTestView = z.object({
+  id: z.uuid(),
+  revision: z.number(),
+  siteId: z.uuid(),
+  workerId: z.uuid(),
+  workerName: z.string(),
+  employeeNumber: z.string(),
+  modelId: z.uuid(),
+  modelName: z.string(),
+  ...FitEntry.shape,
+  leftDb: z.number().nullable(),
+  rightDb: z.number().nullable(),
+  parDb: z.number().nullable(),
+  hasPassed: z.boolean().nullable(),
+  activePassed: z.boolean().nullable(),
+  /** Whether the device was issued on it, or only tried. */
+  outcome: z.enum(["issued", "tried"]),
+  dueOn: IsoDate.nullable(),
+  isVoid: z.boolean(),
+  authorName: z.string().nullable(),
+  can: Can("change"),
+});
+export type FitTestView = z.infer<typeof FitTestView>;
+export const FitTestFilter = PageQuery.extend({
+  siteId: z.uuid().optional(),
+  workerId: z.uuid().optional(),
+  modelId: z.uuid().optional(),
+});
+export const FitTestPage = pageOf(FitTestView);
+
+/** What a worker's noise asks of a protector, from the worker's own days. */
+export const AttenuationNeed = z.object({
+  /** Null: no noise on record. */
+  needDb: z.number().nullable(),
+  outsideDb: z.number().nullable(),
+  targetDb: z.number().nullable(),
+  taskName: z.string().nullable(),
+  /** The most that may come off before it is too much; null: the rule has no such scale. */
+  mostDb: z.number().nullable(),
+  reason: z.string().nullable(),
+});
+export type AttenuationNeed = z.infer<typeof AttenuationNeed>;
+
+export const Gear = z.enum(["helmet", "glasses", "respirator"]);
+export type Gear = z.infer<typeof Gear>;
+
+/** A model offered to a worker, with why it stands where it stands. */
+export const Candidate = z.object({
+  modelId: z.uuid(),
+  outerModelId: z.uuid().nullable(),
+  name: z.string(),
+  kind: z.string(),
+  /** Set: it is out, and why. */
+  excludedBy: z
+    .object({ code: z.enum(["gear", "no-data", "archived"]), gear: Gear.nullable() })
+    .nullable(),
+  word: z
+    .enum(["too-little", "just-enough", "good", "strong-side", "too-much", "enough"])
+    .nullable(),
+  wornDb: z.number().nullable(),
+  /** By how far the lower-confidence level at the ear stays under the target, dB. */
+  marginDb: z.number().nullable(),
+  lastFit: z
+    .object({ parDb: z.number(), hasPassed: z.boolean().nullable(), testedOn: IsoDate })
+    .nullable(),
+  batteryMin: z.number().nullable(),
+  batteryLasts: z.boolean().nullable(),
+  stock: z.number().nullable(),
+  /** The comparison that put it behind the one before. */
+  decidedBy: z.enum([
+    "first",
+    "compatibility",
+    "adequacy",
+    "margin",
+    "fit",
+    "battery",
+    "stock",
+    "name",
+  ]),
+});
+export type Candidate = z.infer<typeof Candidate>;
+
+/** A worker at the fitting desk. */
+export const FittingDesk = z.object({
+  worker: z.object({
+    id: z.uuid(),
+    siteId: z.uuid(),
+    siteName: z.string(),
+    name: z.string(),
+    employeeNumber: z.string(),
+    jobName: z.string().nullable(),
+    wornGear: z.array(Gear),
+    personalTargetDb: z.number().nullable(),
+  }),
+  ruleSetKey: z.string(),
+  ruleSetVersion: z.number(),
+  need: AttenuationNeed,
+  policy: z.object({
+    confidencePct: ConfidencePct,
+    everyMonths: z.number().nullable(),
+    afterFailDays: z.number().nullable(),
+  }),
+  candidates: z.array(Candidate),
+  tests: z.array(FitTestView),
+  issued: z.array(
+    z.object({
+      id: z.uuid(),
+      revision: z.number(),
+      modelId: z.uuid(),
+      modelName: z.string(),
+      size: z.string().nullable(),
+      issuedOn: IsoDate,
+      isAcknowledged: z.boolean(),
+    }),
+  ),
+  can: Can("test", "issue"),
+});
+export type FittingDesk = z.infer<typeof FittingDesk>;
+
+/** Hands a device out: the assignment, the stock and the acknowledgement in one. */
+export const IssueInput = z.object({
+  modelId: z.uuid(),
+  size: Size.nullable().default(null),
+  fitTestId: z.uuid().nullable().default(null),
+  taskId: z.uuid().nullable().default(null),
+  areaId: z.uuid().nullable().default(null),
+  issuedOn: IsoDate,
+  offeredModelIds: z.array(z.uuid()).min(1).max(40),
+  wasInstructed: z.boolean(),
+  isAcknowledged: z.boolean(),
+  /** Only one kind on offer, or none in stock: why all the same. */
+  reason: Reason.nullable().default(null),
+});
+export type IssueInput = z.infer<typeof IssueInput>;
+export const IssueEnd = z.object({
+  endedOn: IsoDate,
+  how: z.enum(["returned", "lost", "damaged", "replaced"]),
+});
+export const IssueView = z.object({
+  id: z.uuid(),
+  revision: z.number(),
+  siteId: z.uuid(),
+  workerId: z.uuid(),
+  workerName: z.string(),
+  employeeNumber: z.string(),
+  modelId: z.uuid(),
+  modelName: z.string(),
+  size: z.string().nullable(),
+  useName: z.string().nullable(),
+  issuedOn: IsoDate,
+  offered: z.array(z.string()),
+  wasInstructed: z.boolean(),
+  acknowledgedHow: z.enum(["in-person", "own-page"]).nullable(),
+  endedOn: IsoDate.nullable(),
+  endedHow: IssueEnd.shape.how.nullable(),
+  parDb: z.number().nullable(),
+  authorName: z.string().nullable(),
+  can: Can("end", "acknowledge"),
+});
+export type IssueView = z.infer<typeof IssueView>;
+export const IssuePage = pageOf(IssueView);
+
+export const RefusalInput = z.object({
+  modelId: z.uuid().nullable().default(null),
+  kind: z.enum(["refused", "not-worn", "cannot-wear"]),
+  happenedOn: IsoDate,
+  reason: Reason,
+});
+export type RefusalInput = z.infer<typeof RefusalInput>;
+export const RefusalView = RefusalInput.extend({
+  id: z.uuid(),
+  workerId: z.uuid(),
+  modelName: z.string().nullable(),
+  authorName: z.string().nullable(),
+});
+
+/** A group's own fits of one model beside its label. */
+export const FitDistribution = z.object({
+  rows: z.array(
+    z.object({
+      modelId: z.uuid(),
+      modelName: z.string(),
+      count: z.number(),
+      failedCount: z.number(),
+      parsDb: z.array(z.number()),
+      meanDb: z.number(),
+      sdDb: z.number().nullable(),
+      /** What the label promises in the same terms, dB; null: nothing comparable. */
+      labelDb: z.number().nullable(),
+      labelMethod: z.string().nullable(),
+    }),
+  ),
+});
+
+/** A site's rules of fitting. */
+export const FitPolicyInput = z.object({
+  confidencePct: ConfidencePct,
+  everyMonths: z.number().int().min(1).max(120).nullable(),
+  afterFailDays: z.number().int().min(1).max(365).nullable(),
+});
+export type FitPolicyInput = z.infer<typeof FitPolicyInput>;
+
+/** Octave bands of both microphones, typed in place of a recording. */
+export const TypedMicrophones = z.object({
+  outsideOffDb: OctaveBands,
+  insideOffDb: OctaveBands,
+  outsideOnDb: OctaveBands.nullable().default(null),
+  insideOnDb: OctaveBands.nullable().default(null),
+});

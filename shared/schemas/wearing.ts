@@ -1,0 +1,70 @@
+import { z } from "zod";
+import { Can, IsoDate, PageQuery, pageOf, Reason } from "./common";
+
+export const WearingLook = z
+  .object({
+    workerId: z.uuid(),
+    taskId: z.uuid(),
+    wornCount: z.number().int().min(0).max(1000),
+    seenCount: z.number().int().min(1).max(1000),
+  })
+  .refine(({ wornCount, seenCount }) => wornCount <= seenCount, {
+    path: ["wornCount"],
+    params: { code: "more-worn-than-seen" },
+  });
+/** A round through the shop, or what somebody says of themselves. */
+export const WearingRoundInput = z.object({
+  siteId: z.uuid(),
+  seenOn: IsoDate,
+  source: z.enum(["round", "own-report"]).default("round"),
+  note: z.string().trim().max(2000).default(""),
+  looks: z.array(WearingLook).min(1).max(400),
+});
+export type WearingRoundInput = z.infer<typeof WearingRoundInput>;
+export const WearingRoundStrike = z.object({ reason: Reason });
+export const WearingRoundView = z.object({
+  id: z.uuid(),
+  revision: z.number(),
+  siteId: z.uuid(),
+  siteName: z.string(),
+  seenOn: IsoDate,
+  source: z.enum(["round", "own-report"]),
+  note: z.string(),
+  authorName: z.string().nullable(),
+  struckReason: z.string().nullable(),
+  wornCount: z.number(),
+  seenCount: z.number(),
+  looks: z.array(
+    z.object({
+      workerId: z.uuid(),
+      workerName: z.string(),
+      taskId: z.uuid(),
+      taskName: z.string(),
+      wornCount: z.number(),
+      seenCount: z.number(),
+    }),
+  ),
+  can: Can("strike"),
+});
+export type WearingRoundView = z.infer<typeof WearingRoundView>;
+export const WearingRoundPage = pageOf(WearingRoundView);
+export const WearingFilter = PageQuery.extend({ siteId: z.uuid().optional() });
+
+/** Who is to be looked at in a round: the crew of a date with their tasks in noise. */
+export const WearingTally = z.object({
+  crewId: z.uuid(),
+  crewName: z.string(),
+  siteId: z.uuid(),
+  date: IsoDate,
+  tasks: z.array(z.object({ id: z.uuid(), name: z.string() })),
+  workers: z.array(
+    z.object({
+      id: z.uuid(),
+      name: z.string(),
+      employeeNumber: z.string(),
+      taskIds: z.array(z.uuid()),
+      protectors: z.array(z.string()),
+    }),
+  ),
+});
+export type WearingTally = z.infer<typeof WearingTally>;
