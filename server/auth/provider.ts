@@ -1,6 +1,10 @@
 import * as client from "openid-client";
 import { Strategy } from "openid-client/passport";
+import passport from "passport";
 import type { Config } from "../config";
+
+/** The strategy's name with passport. */
+export const STRATEGY = "oidc";
 
 /** What the provider says of a person. An e-mail counts only where the provider calls it verified. */
 export interface ProviderIdentity {
@@ -26,7 +30,8 @@ class CodeFlow extends Strategy {
 }
 
 export class Provider {
-  private ready: Promise<{ configuration: client.Configuration; strategy: Strategy }> | undefined;
+  readonly passport = new passport.Passport();
+  private ready: Promise<{ configuration: client.Configuration }> | undefined;
 
   constructor(private readonly config: Config<"web">) {}
 
@@ -59,7 +64,7 @@ export class Provider {
     const strategy = new CodeFlow(
       {
         config: configuration,
-        name: "oidc",
+        name: STRATEGY,
         sessionKey: "oidc",
         scope: "openid email profile",
         callbackURL: `${PUBLIC_URL}/api/auth/callback`,
@@ -71,7 +76,8 @@ export class Provider {
         );
       },
     );
-    return { configuration, strategy };
+    this.passport.use(STRATEGY, strategy);
+    return { configuration };
   }
 
   private async identify(

@@ -1,6 +1,5 @@
 import { createHash } from "node:crypto";
 import type { Request, Response } from "express";
-import passport from "passport";
 import { z } from "zod";
 import {
   SessionView,
@@ -13,7 +12,7 @@ import { execute, inTransaction, row, rows } from "../lib/db";
 import { endpoint } from "../lib/endpoint";
 import { AppError, issue, unprocessable } from "../lib/errors";
 import { loadActor } from "./actor";
-import type { Provider, ProviderIdentity } from "./provider";
+import { type Provider, type ProviderIdentity, STRATEGY } from "./provider";
 import { UnfinishedTries } from "./rate-limit";
 import { clearCookies, rotateSession } from "./session";
 
@@ -77,14 +76,19 @@ const unfinished = new UnfinishedTries("sign-in-unfinished", 60, 10);
 export const localPath = (value: unknown): string =>
   typeof value === "string" && /^\/(?![/\\])[^\r\n]*$/.test(value) ? value : "/";
 
+/**
+ * The identity that the provider vouches for, or null where the answer is already on its way. By the strategy's name:
+ * passport then makes a strategy of its own for each request, while one handed over as an object would be shared by all
+ * who sign in at that moment, and answer one with the other's identity.
+ */
 function authenticate(
-  strategy: passport.Strategy,
+  { passport }: Provider,
   request: Request,
   response: Response,
 ): Promise<ProviderIdentity | null> {
   return new Promise((resolve, reject) => {
     passport.authenticate(
-      strategy,
+      STRATEGY,
       { session: false },
       (error: unknown, identity?: ProviderIdentity | false) => {
         if (error) reject(error);
@@ -93,8 +97,8 @@ function authenticate(
     )(request, response, (error: unknown) =>
       reject(error ?? new Error("the strategy did not answer")),
     );
-    // A redirect to the provider ends the answer here.
-    response.once("finish", () => resolve(null));
+    // A redirect to the provider ends the answer here, and so does whoever leaves.
+    response.once("close", () => resolve(null));
   });
 }
 
@@ -103,13 +107,13 @@ export function defineAuthRoutes(provider: Provider): void {
     "/auth/sign-in",
     { summary: "Go to the provider to sign in", may: "public", query: SignInQuery },
     async ({ request, response, query }) => {
-      const { strategy } = await provider.connect().catch(() => {
+      await provider.connect().catch(() => {
         throw new AppError("provider-down", 503);
       });
       if (!request.session.isSigningIn) await unfinished.begin(request);
       request.session.isSigningIn = true;
       request.session.returnTo = localPath(query.returnTo);
-      await authenticate(strategy as never, request, response);
+      await authenticate(provider, request, response);
     },
   );
 
@@ -118,10 +122,10 @@ export function defineAuthRoutes(provider: Provider): void {
     { summary: "Come back from the provider", may: "public" },
     async ({ request, response }) => {
       const { returnTo, isSigningIn } = request.session;
-      const { strategy } = await provider.connect().catch(() => {
+      await provider.connect().catch(() => {
         throw new AppError("provider-down", 503);
       });
-      const identity = await authenticate(strategy as never, request, response).catch(() => null);
+      const identity = await authenticate(provider, request, response).catch(() => null);
       if (response.headersSent) return;
       if (!identity) {
         // One that failed stays counted, and the next from here counts anew.

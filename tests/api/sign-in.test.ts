@@ -58,6 +58,26 @@ const post = (
   });
 
 describe("sign-in", () => {
+  test("ten people who come back from the provider at one moment are each themselves", async () => {
+    const people = await Promise.all(
+      Array.from({ length: 10 }, async () => {
+        const { email, sub } = person();
+        const user = await buildUser({ email, roles: ["officer"] });
+        return { sub, user, visitor: new Visitor() };
+      }),
+    );
+    // Each up to the way back, so that all the ways back are walked together.
+    const backs = await Promise.all(
+      people.map(async ({ visitor, sub }) => ({
+        visitor,
+        address: await visitor.upTo("/api/auth/callback", signInAddress(), sub),
+      })),
+    );
+    await Promise.all(backs.map(({ visitor, address }) => visitor.open(address)));
+    const sessions = await Promise.all(people.map(({ visitor }) => session(visitor)));
+    expect(sessions.map((one) => one.user?.id)).toEqual(people.map(({ user }) => user.id));
+  });
+
   test("asks with state, nonce and PKCE; a granted e-mail gets in, is bound to its subject, and comes back where it wanted to", async () => {
     const { email, sub } = person();
     const user = await buildUser({ email: email.toUpperCase(), roles: ["officer"] });

@@ -1,3 +1,12 @@
+const formPost = (address: string, fields: Record<string, string>): RequestInit => ({
+  method: "POST",
+  headers: {
+    "Content-Type": "application/x-www-form-urlencoded",
+    Origin: new URL(address).origin,
+  },
+  body: new URLSearchParams(fields).toString(),
+});
+
 /** A person's browser reduced to requests, cookies and redirects: enough to sign in for real. */
 export class Visitor {
   private readonly cookies = new Map<string, Map<string, string>>();
@@ -28,16 +37,23 @@ export class Visitor {
     throw new Error(`too many redirects, last to ${url.href}`);
   }
 
+  /** Signs in at the provider and gives the address that leads back, not yet asked for. */
+  async upTo(path: string, signInAddress: string, sub: string): Promise<string> {
+    const page = await this.open(signInAddress);
+    const form = `${page.url.href}/sign-in`;
+    let url = new URL(form);
+    let response = await this.request(form, formPost(form, { sub }));
+    for (let hop = 0; hop < 12; hop += 1) {
+      url = new URL(response.headers.get("Location") ?? "", url);
+      if (url.pathname === path) return url.href;
+      response = await this.request(url.href);
+    }
+    throw new Error(`never came to ${path}, last to ${url.href}`);
+  }
+
   /** Posts a form as a page on that address would. */
   submit(address: string, fields: Record<string, string>) {
-    return this.open(address, {
-      method: "POST",
-      headers: {
-        "Content-Type": "application/x-www-form-urlencoded",
-        Origin: new URL(address).origin,
-      },
-      body: new URLSearchParams(fields).toString(),
-    });
+    return this.open(address, formPost(address, fields));
   }
 
   /** Chooses a person on the local provider's page, which `signInAddress` leads to. */
