@@ -42,7 +42,17 @@ const parts: Record<string, string[]> = {
     ),
   ],
   office: [
-    ...features("waiting", "findings", "workers", "results", "runs", "notices", "assignments"),
+    ...features(
+      "waiting",
+      "findings",
+      "workers",
+      "results",
+      "runs",
+      "notices",
+      "assignments",
+      "fits",
+      "microphone-check",
+    ),
     ...pages(
       "waiting-page",
       "finding*-page",
@@ -50,6 +60,7 @@ const parts: Record<string, string[]> = {
       "result-page",
       "shift-page",
       "run*-page",
+      "microphone-*-page",
     ),
   ],
   rules: ["shared/acoustics/**", "shared/rule-sets/**"],
@@ -58,6 +69,7 @@ const parts: Record<string, string[]> = {
     ...features("protectors", "rules", "areas", "tasks", "jobs", "crews", "instruments", "imports"),
     ...pages(
       "protector*",
+      "fit*-page",
       "rules-page",
       "site-rules-page",
       "areas-page",
@@ -67,6 +79,7 @@ const parts: Record<string, string[]> = {
     ...pages("crew-page", "crews-page", "instruments-page", "import-page", "register-frame"),
   ],
   measuring: [
+    "shared/recordings/**",
     ...features("surveys", "outings", "histories", "recordings", "groups"),
     ...pages(
       "to-measure-page",

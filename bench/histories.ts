@@ -123,8 +123,7 @@ async function importOne(
     const found = (await HistoryImport.findByPk(importId))!;
     if (found.state !== "ready")
       throw new Error(`An import is ${found.state}: ${JSON.stringify(found.report?.issues)}`);
-    const date = found.report!.startsAt!.slice(0, 10);
-    await orderHistoryStoring(await loadActor(userId, epoch), found, date, {
+    await orderHistoryStoring(await loadActor(userId, epoch), found, {
       covers: "shift",
       keptReason: null,
     });

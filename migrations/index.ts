@@ -9,6 +9,9 @@ import { historyImports } from "./20261201120000-history-imports";
 import { recordings } from "./20261201130000-recordings";
 import { atEarBounds } from "./20261201140000-at-ear-bounds";
 import { protectorsAndFit } from "./20261201150000-protectors-and-fit";
+import { microphoneCheckSpectrum } from "./20261201151000-microphone-check-spectrum";
+import { issueReason } from "./20261201152000-issue-reason";
+import { samplingPatterns } from "./20261201160000-sampling-patterns";
 
 /** In the order in which they run. */
 export const migrations = [
@@ -23,4 +26,7 @@ export const migrations = [
   recordings,
   atEarBounds,
   protectorsAndFit,
+  samplingPatterns,
+  microphoneCheckSpectrum,
+  issueReason,
 ];

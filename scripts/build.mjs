@@ -17,6 +17,7 @@ const entryPoints = ["web", "work", "migrate", "setup", "seed-demo", "backup", "
 const threads = {
   "history-worker": "histories/history-worker",
   "analyse-worker": "recordings/analyse-worker",
+  "pair-worker": "recordings/pair-worker",
 };
 const dist = join(projectFolder, "dist");
 const recordFile = join(dist, "build.json");

@@ -209,7 +209,7 @@ async function fillDatabase(env) {
   mkdirSync(files.app, { recursive: true });
   await runStep("The migration", entryPoint("migrate"), env);
   if (isSeeded) return;
-  console.log("Filling the demo (only the first time)");
+  console.log(isReset ? "Filling the demo anew" : "Filling the demo (only the first time)");
   await runStep("Filling the demo", entryPoint("seed-demo"), env);
   writeJson(files.seeded, { seededAt: new Date().toISOString() });
 }

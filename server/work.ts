@@ -3,6 +3,7 @@ import { setTimeout as sleep } from "node:timers/promises";
 import { Logger, parseCronItems, run, type TaskList } from "graphile-worker";
 import { configOrExit } from "./config";
 import { analyseStoredRecording } from "./jobs/analyse-recording";
+import { checkMicrophones } from "./jobs/check-microphones";
 import { lookAfter } from "./jobs/look-after";
 import { readHistoryImport } from "./jobs/read-history";
 import { recomputeStaleDays } from "./jobs/recompute-stale-days";
@@ -46,6 +47,7 @@ const taskList: TaskList = {
   "send-notice": job("send-notice", (payload) => sendNotice(payload, mailer, config.PUBLIC_URL)),
   "read-history": job("read-history", (payload) => readHistoryImport(payload)),
   "analyse-recording": job("analyse-recording", (payload) => analyseStoredRecording(payload)),
+  "check-microphones": job("check-microphones", (payload) => checkMicrophones(payload)),
   "look-after": job("look-after", () => lookAfter()),
 };
 

@@ -22,6 +22,10 @@ export const paths = {
   },
   newWorker: "/workers/new",
   changeWorker: (id: string) => `/workers/${id}/change`,
+  /** Two microphones at one of the worker's ears: a new check, and one that was sent in. */
+  microphoneCheck: (workerId: string) => `/workers/${workerId}/microphone-check`,
+  microphoneResult: (workerId: string, checkId: string) =>
+    `/workers/${workerId}/microphone-check/${checkId}`,
   result: (workerId: string, date: string) => `/workers/${workerId}/days/${date}`,
   storedResult: (id: string) => `/results/${id}`,
   shift: (id: string) => `/shifts/${id}`,
@@ -50,6 +54,9 @@ export const paths = {
   protectors: "/protectors",
   protector: (id: string) => `/protectors/${id}`,
   newProtector: "/protectors/new",
+  fitting: "/protectors/fitting",
+  fittingOf: (workerId: string) => `/protectors/fitting/${workerId}`,
+  fits: "/protectors/fits",
 
   rules: "/rules",
   site: (id: string) => `/rules/sites/${id}`,

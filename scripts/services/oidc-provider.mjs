@@ -83,7 +83,7 @@ const texts = {
     errorTitle: "Die Anmeldung hat die Anfrage abgelehnt",
     roles: {
       officer: "Sicherheitsfachkraft",
-      supervisor: "Vorgesetzte/r",
+      supervisor: "Aufsichtsperson",
       worker: "Beschäftigte/r",
       auditor: "Prüfer/in",
       administrator: "Administrator/in",

@@ -507,17 +507,44 @@ export const HISTORIES: readonly DemoHistory[] = [
     },
   }),
   shift("ostmere", ["3340", "3352", "3388"], 3, -0.2, { brackets: "all" }),
-  shift("ostmere", ["4121", "4133", "4137"], 5, 0.2, { instrument: "Dosimeter, amber band" }),
+  shift("ostmere", ["4121", "4133", "4137"], 5, 0.2, {
+    brackets: "all",
+    instrument: "Dosimeter, amber band",
+  }),
   shift("ostmere", ["4139"], 7, 0, { channels: ["laeq"], instrument: "Dosimeter, amber band" }),
   shift("ostmere", ["4442", "4447"], 8, -0.1, { brackets: "all" }),
   shift("ostmere", ["3402", "3315"], 12, 0.3),
   shift("ostmere", ["4120", "4128", "4121"], 13, -0.3, { instrument: "Dosimeter, amber band" }),
-  shift("ostmere", ["4002", "4005", "4011"], 15, 0.2),
+  shift("ostmere", ["4002", "4005", "4011"], 15, 0.2, { brackets: "all" }),
   shift("ostmere", ["4433", "4431"], 22, -0.1),
   shift("kettle-bend", ["2877", "2880"], 4, 0.2, { brackets: "all" }),
-  shift("kettle-bend", ["2899", "2903", "2907"], 6, 0),
-  shift("kettle-bend", ["2891", "2893", "2896"], 10, -0.2),
+  shift("kettle-bend", ["2899", "2903", "2907"], 6, 0, { brackets: "all" }),
+  shift("kettle-bend", ["2891", "2893", "2896"], 10, -0.2, { brackets: "all" }),
 ];
+
+/** What was recorded at a task to say how its noise spreads over the bands; the audio went once that was known. */
+export const RECORDINGS = [
+  {
+    site: "ostmere",
+    task: "Linishing",
+    daysAgo: 1,
+    at: "09:15",
+    fileName: "linishing, belt 2.wav",
+  },
+  {
+    site: "kettle-bend",
+    task: "Compressor rounds",
+    daysAgo: 2,
+    at: "13:40",
+    fileName: "compressor house, at the second machine.wav",
+  },
+] as const satisfies readonly {
+  site: SiteKey;
+  task: string;
+  daysAgo: number;
+  at: string;
+  fileName: string;
+}[];
 
 /** A sample of chipping logged eight times a second. */
 export const FINE_HISTORY = {

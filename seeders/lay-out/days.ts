@@ -210,6 +210,7 @@ function toRow({ workerId, crew, lengthMin, tasks, note }: PlannedShift): Record
     lengthMin,
     unaccounted: { how: "unknown" },
     note,
+    confirmsOpenEnd: true,
     tasks: tasks.map(({ name: _, ...task }) => task),
   };
 }

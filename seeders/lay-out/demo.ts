@@ -13,6 +13,7 @@ import { measureBeforehand, measureSince, sendOutToday } from "./measurements";
 import { leaveSomeToTell, markSent, tellInThePast } from "./notices";
 import { writePeopleFile } from "./people-file";
 import { Demo, known, layOutProgramme } from "./programme";
+import { layOutRecordings } from "./recordings";
 import { takeStep } from "./steps";
 import { dateStory } from "./story";
 
@@ -94,6 +95,8 @@ export async function layOutDemo({
   }
   await measureSince(demo);
   await layOutHistories(demo, story);
+  await layOutRecordings(demo);
+  await compute(await staleDays(demo), new Date(now.getTime() - 60_000));
   await sendOutToday(demo, now);
   await tellOfCalibration(demo);
   await markSent(demo, now, publicUrl);

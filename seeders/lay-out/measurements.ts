@@ -290,7 +290,8 @@ export async function takeSample(
   const facts = { checkBeforeDb, checkAfterDb, durationMin: sample.durationMin };
   const workerId = sample.drawn === null ? null : (drawn[sample.drawn % drawn.length] ?? null);
   return demo.at(end, async () => {
-    const doubts = await doubtsOf({ instrumentId: instrument.id, date }, facts, {
+    const own = { ...facts, covers: "part" as const };
+    const doubts = await doubtsOf({ instrumentId: instrument.id, workerId, date }, own, {
       shown: sample.doubts ?? [],
     });
     if (doubts.length > 0 && sample.keptReason === undefined)
@@ -308,8 +309,7 @@ export async function takeSample(
         span: { from: start.toISOString(), to: end.toISOString() },
       },
       {
-        ...facts,
-        covers: "part",
+        ...own,
         keptReason: sample.keptReason ?? null,
         unusual: sample.unusual ?? null,
         doubts: doubts.map(({ code }) => code),

@@ -326,6 +326,8 @@ async function layOutProtectors(demo: Demo): Promise<void> {
           areaId: null,
           fromDate: startOf(demo, site, worker),
           toDate: toDaysAgo === undefined ? null : demo.calendar(site).daysAgo(toDaysAgo),
+          size: null,
+          audioDb: null,
         },
         { field: (name) => [name], worker: (_index, name) => [number, name] },
       );

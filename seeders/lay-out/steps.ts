@@ -54,6 +54,8 @@ async function perform(
         areaId: area ? known(demo.areas, area).id : null,
         fromDate: step.date,
         toDate: toDay === undefined ? null : dateOf(toDay),
+        size: null,
+        audioDb: null,
       },
       PATHS,
     );
@@ -113,6 +115,7 @@ async function perform(
         isVoid: false,
         reason,
         confirmsWholeDay: false,
+        confirmsOpenEnd: false,
         localStart: stored.localStart,
         whichHour: null,
         lengthMin: stored.lengthMin,

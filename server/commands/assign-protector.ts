@@ -40,8 +40,8 @@ export async function assignProtector(
     await endEarlier(actor, worker.id, input);
     const id = randomUUID();
     await execute(
-      `INSERT INTO assignments (id, organization_id, worker_id, task_id, area_id, inner_model_id, outer_model_id, valid, assigned_by)
-       VALUES ($1, $2, $3, $4, $5, $6, $7, ${daysFromTo("$8", "$9")}, $10)`,
+      `INSERT INTO assignments (id, organization_id, worker_id, task_id, area_id, inner_model_id, outer_model_id, valid, assigned_by, size, audio_db)
+       VALUES ($1, $2, $3, $4, $5, $6, $7, ${daysFromTo("$8", "$9")}, $10, $11, $12)`,
       [
         id,
         actor.organizationId,
@@ -53,6 +53,8 @@ export async function assignProtector(
         input.fromDate,
         input.toDate,
         actor.userId,
+        input.size,
+        input.audioDb,
       ],
     );
     await recordAudit(actor, {

@@ -1,7 +1,7 @@
 import type { z } from "zod";
 import type { ProblemIssue } from "../../shared/schemas/problem";
 import type { ShiftFacts, ShiftTaskInput } from "../../shared/schemas/shift";
-import { atLocalTime } from "../../shared/time/zone";
+import { atLocalTime, localTime } from "../../shared/time/zone";
 import { rows } from "../lib/db";
 import { issue } from "../lib/errors";
 import type { SavedShiftRow } from "../queries/saved-shifts";
@@ -62,6 +62,18 @@ interface Span {
 
 const endOf = ({ startsAt, lengthMin }: Pick<Span, "startsAt" | "lengthMin">) =>
   startsAt.getTime() + lengthMin * 60_000;
+
+/** A shift whose end lies ahead is a plan and no record yet: it is asked about once. */
+export function openEndIssues(
+  shift: Pick<Span, "startsAt" | "lengthMin">,
+  timeZone: string,
+  confirmsOpenEnd: boolean,
+): ProblemIssue[] {
+  const end = new Date(endOf(shift));
+  return end.getTime() > Date.now() && !confirmsOpenEnd
+    ? [issue(["lengthMin"], "open-end-unconfirmed", { time: localTime(end, timeZone) })]
+    : [];
+}
 
 /** A worker can't be in two shifts at once. */
 export function overlapIssues(

@@ -7,7 +7,7 @@ import { stale, unprocessable } from "../lib/errors";
 import type { Actor } from "../lib/policy";
 import type { Shift } from "../models/shift";
 import { shiftView } from "../queries/shift-view";
-import { startOf, unknownTaskIssues, wholeDayIssues } from "./check-shift";
+import { openEndIssues, startOf, unknownTaskIssues, wholeDayIssues } from "./check-shift";
 import { recomputeDays } from "./recompute-days";
 
 import { scheduleNotices } from "./schedule-notices";
@@ -55,8 +55,7 @@ export async function correctShift(
       },
     ]);
   } else {
-    const { localStart, lengthMin, unaccounted, tasks, note, reason, confirmsWholeDay } =
-      correction;
+    const { localStart, lengthMin, unaccounted, tasks, note, reason } = correction;
     const known = new Set(
       (
         await rows<{ id: string }>("SELECT id FROM tasks WHERE site_id = :siteId", {
@@ -64,8 +63,15 @@ export async function correctShift(
         })
       ).map(({ id }) => id),
     );
-    issues.push(...wholeDayIssues(lengthMin, confirmsWholeDay), ...unknownTaskIssues(tasks, known));
+    issues.push(
+      ...wholeDayIssues(lengthMin, correction.confirmsWholeDay),
+      ...unknownTaskIssues(tasks, known),
+    );
     const startsAt = startOf(shift.date, correction, shift.timeZone, issues);
+    if (startsAt) {
+      const span = { startsAt, lengthMin };
+      issues.push(...openEndIssues(span, shift.timeZone, correction.confirmsOpenEnd));
+    }
     if (!startsAt || issues.length > 0) throw unprocessable(issues);
     await storeShifts(actor, entryId, [
       { ...unchanged, localStart, lengthMin, startsAt, unaccounted, tasks, note, reason },

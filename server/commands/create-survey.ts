@@ -96,8 +96,9 @@ export async function saveSurveyParts(
   for (const table of ["survey_targets", "survey_people", "instrument_reservations"])
     await execute(`DELETE FROM ${table} WHERE survey_id = $1`, [surveyId]);
   await execute(
-    `INSERT INTO survey_targets (organization_id, survey_id, position, task_id, samples_count, sample_min)
-     SELECT $1::uuid, $2::uuid, t.ordinality - 1, (t.value->>'taskId')::uuid, (t.value->>'samplesCount')::int, (t.value->>'sampleMin')::float8
+    `INSERT INTO survey_targets (organization_id, survey_id, position, task_id, samples_count, sample_min, pattern, cycle_min)
+     SELECT $1::uuid, $2::uuid, t.ordinality - 1, (t.value->>'taskId')::uuid, (t.value->>'samplesCount')::int, (t.value->>'sampleMin')::float8,
+       t.value->>'pattern', (t.value->>'cycleMin')::float8
      FROM jsonb_array_elements($3::jsonb) WITH ORDINALITY t`,
     [...given, JSON.stringify(targets)],
   );

@@ -1,17 +1,18 @@
 import type { OutingReturn, OutingUndo } from "../../shared/schemas/outing";
-import { isEmptyReading } from "../../shared/schemas/run";
 import { recordAudit } from "../lib/audit";
 import { execute, rows } from "../lib/db";
-import { AppError, issue, unprocessable } from "../lib/errors";
+import { AppError } from "../lib/errors";
 import { only } from "../lib/only";
 import type { Actor } from "../lib/policy";
 import { isoInstant } from "../lib/sql-instant";
 import type { Run } from "../models/instrument";
 import { leastRunMin } from "../queries/outings";
 import { checkInstants } from "./check-instants";
+import { requireReadings } from "./record-outing";
 import {
   doubtsOf,
   insertRunRevision,
+  reasonFor,
   requireFreeInstrument,
   requireKeptReason,
 } from "./record-run";
@@ -49,16 +50,19 @@ export async function endOuting(
 ): Promise<void> {
   const start = await startOf(run);
   checkInstants(site, { date: run.date, from: start.outAt, fromField: "outAt", to: input.backAt });
-  const empty = input.readings.findIndex(isEmptyReading);
-  if (empty >= 0) throw unprocessable([issue(["readings", empty, "averageDb"], "reading-empty")]);
+  requireReadings([], input.readings);
   const facts = {
     checkBeforeDb: start.checkBeforeDb,
     checkAfterDb: input.checkAfterDb,
     durationMin: (Date.parse(input.backAt) - Date.parse(start.outAt)) / 60_000,
+    covers: input.covers,
   };
-  const doubts = await doubtsOf({ instrumentId: run.instrumentId, date: run.date }, facts, {
+  const { instrumentId, workerId, shiftId, date } = run;
+  const span = { from: start.outAt, to: input.backAt };
+  const doubts = await doubtsOf({ instrumentId, workerId, shiftId, date, span }, facts, {
     leastMin: await leastRunMin(run),
     shown: input.doubts,
+    needsChecks: true,
   });
   const codes = doubts.map(({ code }) => code);
   // What was said in the morning holds for what was known in the morning, and for nothing that came to light since.
@@ -73,8 +77,7 @@ export async function endOuting(
     number,
     {
       ...facts,
-      covers: input.covers,
-      keptReason: doubts.length > 0 ? keptReason : input.keptReason,
+      keptReason: reasonFor(doubts, keptReason),
       unusual: input.unusual,
       doubts: codes,
       readings: input.readings,
@@ -87,7 +90,7 @@ export async function endOuting(
     `UPDATE runs SET revision = $2, current_revision_id = $3, is_out = FALSE, is_void = $4, span = tstzrange(lower(span), $5::timestamptz) WHERE id = $1`,
     [run.id, number, revisionId, isDiscarded, input.backAt],
   );
-  await requireFreeInstrument();
+  await requireFreeInstrument(actor, run.id);
   await recordAudit(actor, {
     action: isDiscarded ? "discard-outing" : "end-outing",
     subjectKind: "run",

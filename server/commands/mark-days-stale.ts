@@ -9,16 +9,18 @@ export interface Concerned {
   areaId?: string;
   modelId?: string;
   workerId?: string;
+  workerIds?: readonly string[];
 }
 
 /** SQL: the days `d` whose inputs a change touches; `value` puts a value into the query. */
 export function concernedDays(
-  { fromDate, siteId, taskId, taskIds, areaId, modelId, workerId }: Concerned,
+  { fromDate, siteId, taskId, taskIds, areaId, modelId, workerId, workerIds }: Concerned,
   value: (given: string) => string,
 ): string {
   const conditions = [`d.date >= CAST(${value(fromDate)} AS date)`];
   if (siteId) conditions.push(`d.site_id = ${value(siteId)}`);
   if (workerId) conditions.push(`d.worker_id = ${value(workerId)}`);
+  if (workerIds) conditions.push(`d.worker_id IN (${workerIds.map(value).join(", ")})`);
   const usesTask = (
     of: string,
   ) => `EXISTS (SELECT 1 FROM shifts s JOIN shift_tasks t ON t.shift_revision_id = s.current_revision_id

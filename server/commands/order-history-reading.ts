@@ -10,7 +10,9 @@ import { AppError, issue, unprocessable } from "../lib/errors";
 import { addJob } from "../lib/jobs";
 import type { Actor } from "../lib/policy";
 import type { HistoryImport } from "../models/survey";
-import { doubtsOf, requireKeptReason } from "./record-run";
+import type { FacingRun } from "../queries/faced-shifts";
+import { runOfImport, spanOf } from "../queries/history-imports";
+import { doubtsOf, reasonFor, requireKeptReason } from "./record-run";
 
 export async function queueHistoryReading(organizationId: string, importId: string): Promise<void> {
   await addJob(
@@ -58,11 +60,17 @@ export const shownIn = ({ channels }: HistoryReport): ("clipped" | "under-range"
 
 /** What speaks against the run that a file becomes. */
 export function doubtsOfImport(
-  { instrumentId, date }: { instrumentId: string; date: string },
+  run: FacingRun & { instrumentId: string },
   report: HistoryReport,
+  covers: HistoryStoreOrder["covers"],
 ): Promise<RunDoubt[]> {
-  const facts = { checkBeforeDb: null, checkAfterDb: null, durationMin: null };
-  return doubtsOf({ instrumentId, date }, facts, { shown: shownIn(report) });
+  const facts = {
+    checkBeforeDb: null,
+    checkAfterDb: null,
+    durationMin: (report.valuesCount * (report.intervalMs ?? 0)) / 60_000,
+    covers,
+  };
+  return doubtsOf({ ...run, span: spanOf(report) }, facts, { shown: shownIn(report) });
 }
 
 /**
@@ -73,15 +81,22 @@ export function doubtsOfImport(
 export async function orderHistoryStoring(
   actor: Actor,
   found: HistoryImport,
-  date: string,
   order: HistoryStoreOrder,
 ): Promise<void> {
   if (found.state !== "ready" || !found.report) throw new AppError("wrong-state", 409);
-  const doubts = await doubtsOfImport({ instrumentId: found.instrumentId, date }, found.report);
+  const run = await runOfImport(found.id, found.report);
+  const doubts = await doubtsOfImport(run, found.report, order.covers);
   requireKeptReason(doubts, order.keptReason);
   await execute(
     `UPDATE history_imports SET state = 'storing', progress_pct = 0, store_order = $2::jsonb, tries = 0, updated_at = now(), revision = revision + 1 WHERE id = $1`,
-    [found.id, JSON.stringify({ ...order, userId: actor.userId })],
+    [
+      found.id,
+      JSON.stringify({
+        ...order,
+        keptReason: reasonFor(doubts, order.keptReason),
+        userId: actor.userId,
+      }),
+    ],
   );
   await queueHistoryReading(actor.organizationId, found.id);
   await recordAudit(actor, {

@@ -2,13 +2,14 @@ import { randomUUID } from "node:crypto";
 import type { RunCorrection, RunInput, StoredReading } from "../../shared/schemas/run";
 import { findRunDoubts, type RunDoubt } from "../../shared/schemas/run-doubts";
 import { recordAudit } from "../lib/audit";
-import { execute, rows } from "../lib/db";
-import { issue, unprocessable } from "../lib/errors";
+import { execute, row, rows } from "../lib/db";
+import { AppError, issue, unprocessable } from "../lib/errors";
 import { only } from "../lib/only";
 import type { Actor } from "../lib/policy";
 import { isoInstant } from "../lib/sql-instant";
 import type { Run } from "../models/instrument";
 import { calibrationOn } from "../queries/calibrations";
+import { type FacingRun, facedShift } from "../queries/faced-shifts";
 import { leastRunMin } from "../queries/outings";
 
 type GivenReading = RunInput["readings"][number] &
@@ -97,28 +98,36 @@ export async function insertRunRevision(
   return id;
 }
 
-/** What speaks against a run, by its instrument's calibrations on its date and its own facts. */
+/** What speaks against a run, by its instrument's calibrations and its worker's shift on its date, and by its own facts. */
 export async function doubtsOf(
-  { instrumentId, date }: { instrumentId: string; date: string },
-  facts: Pick<RunRevisionFacts, "checkBeforeDb" | "checkAfterDb" | "durationMin">,
+  run: FacingRun & { instrumentId: string },
+  facts: Pick<RunRevisionFacts, "checkBeforeDb" | "checkAfterDb" | "durationMin" | "covers">,
   more: {
     leastMin?: number | null;
     shown?: readonly ("clipped" | "under-range")[];
+    needsChecks?: boolean;
   } = {},
 ): Promise<RunDoubt[]> {
-  const { checkBeforeDb, checkAfterDb, durationMin } = facts;
-  const { leastMin = null, shown = [] } = more;
-  const calibration = await calibrationOn(instrumentId, date);
+  const { checkBeforeDb, checkAfterDb, durationMin, covers } = facts;
+  const { leastMin = null, shown = [], needsChecks = false } = more;
+  const isOfDay = covers !== "part" && run.workerId !== null;
   return findRunDoubts({
     checkBeforeDb,
     checkAfterDb,
-    date,
-    calibration,
+    date: run.date,
+    calibration: await calibrationOn(run.instrumentId, run.date),
     durationMin,
     leastMin,
+    needsChecks,
+    covers,
+    shift: isOfDay ? await facedShift(run) : null,
     shown,
   });
 }
+
+/** The reason why a run is kept goes with its doubts: without one there is nothing to be kept in spite of. */
+export const reasonFor = (doubts: readonly unknown[], keptReason: string | null): string | null =>
+  doubts.length > 0 ? keptReason : null;
 
 /**
  * With a doubt a run counts only if somebody says why it is kept.
@@ -146,12 +155,35 @@ export interface RunPlace {
   span?: { from: string; to: string | null } | null;
 }
 
-/** Asks at once whether the instrument was anywhere else, and not when everything else is done: a commit can't be refused well. */
-export const requireFreeInstrument = () => execute("SET CONSTRAINTS runs_overlap IMMEDIATE");
+/**
+ * Asks at once whether the instrument was anywhere else, and not when everything else is done: a commit can't be refused
+ * well.
+ *
+ * @throws AppError instruments-overlap, with the times of the other run, and the run itself where the actor may see it.
+ */
+export async function requireFreeInstrument(
+  actor: Pick<Actor, "isAt">,
+  runId: string,
+): Promise<void> {
+  const other = await row<{ id: string; siteId: string; from: string; to: string | null }>(
+    `SELECT o.id, o.site_id AS "siteId", ${isoInstant("lower(o.span)")} AS "from", ${isoInstant("upper(o.span)")} AS "to"
+     FROM runs r JOIN runs o ON o.instrument_id = r.instrument_id AND o.id <> r.id AND NOT o.is_void AND o.span && r.span
+     WHERE r.id = :runId AND NOT r.is_void ORDER BY lower(o.span) LIMIT 1`,
+    { runId },
+  );
+  if (other) {
+    const { id, siteId, from, to } = other;
+    const times: Record<string, string> = to === null ? { from } : { from, to };
+    const isTheirs = actor.isAt(siteId, "officer", "auditor");
+    throw new AppError("instruments-overlap", 409, times, [], isTheirs ? { runId: id } : {});
+  }
+  // Another transaction may have been first.
+  await execute("SET CONSTRAINTS runs_overlap IMMEDIATE");
+}
 
 /** Head and first revision, which name each other: both foreign keys are checked at the end of the transaction. */
 export async function insertRun(
-  actor: Pick<Actor, "organizationId" | "userId">,
+  actor: Pick<Actor, "organizationId" | "userId" | "isAt">,
   head: RunPlace,
   facts: RunRevisionFacts,
   entryId: string | null = null,
@@ -187,7 +219,7 @@ export async function insertRun(
       revisionId,
     ],
   );
-  if (head.span) await requireFreeInstrument();
+  if (head.span) await requireFreeInstrument(actor, runId);
   return runId;
 }
 
@@ -216,19 +248,26 @@ export async function recordRun(
   return runId;
 }
 
-/** The next revision of a run: what was recorded stays, with the reason why it no longer counts. */
+/**
+ * The next revision of a run: what was recorded stays, with the reason why it no longer counts. In the grid of a day only
+ * its length is set against its shift, for that is what stands there.
+ */
 export async function correctRun(
   actor: Actor,
   run: Run,
   input: RunCorrection,
   entryId: string | null = null,
+  { isInGrid = false }: { isInGrid?: boolean } = {},
 ): Promise<void> {
   const { reason, isVoid, ...facts } = input;
   const number = run.revision + 1;
   const before = await readingsOf(run.currentRevisionId);
-  const doubts = await doubtsOf(run, facts, {
+  const { instrumentId, workerId, date, shiftId } = run;
+  const span = isInGrid || before.outAt === null ? null : { from: before.outAt, to: before.backAt };
+  const doubts = await doubtsOf({ instrumentId, workerId, date, shiftId, span }, facts, {
     leastMin: await leastRunMin(run),
     shown: before.shown,
+    needsChecks: run.taskId !== null || before.neededChecks,
   });
   if (!isVoid) requireKeptReason(doubts, facts.keptReason);
   const revisionId = await insertRunRevision(
@@ -264,6 +303,8 @@ export async function correctRun(
 interface Before {
   /** What its instrument showed is no figure that a correction could take back. */
   shown: ("clipped" | "under-range")[];
+  /** Its field checks were asked for, or are there. */
+  neededChecks: boolean;
   outAt: string | null;
   backAt: string | null;
   readings: StoredReading[];
@@ -273,6 +314,7 @@ async function readingsOf(revisionId: string): Promise<Before> {
   return only(
     await rows<Before>(
       `SELECT ARRAY(SELECT d FROM unnest(v.doubts) d WHERE d IN ('clipped', 'under-range')) AS shown,
+         'field-check-missing' = ANY (v.doubts) OR v.check_before_db IS NOT NULL AS "neededChecks",
          ${isoInstant("v.out_at")} AS "outAt", ${isoInstant("v.back_at")} AS "backAt",
          coalesce((SELECT json_agg(json_build_object(
            'settings', json_build_object('criterionLevelDb', g.criterion_level_db, 'exchangeRateDb', g.exchange_rate_db, 'thresholdDb', g.threshold_db,

@@ -6,7 +6,7 @@ import type { Actor } from "../lib/policy";
 import type { Instrument } from "../models/instrument";
 import { leastRunMin } from "../queries/outings";
 import { checkInstants } from "./check-instants";
-import { doubtsOf, insertRun, requireKeptReason } from "./record-run";
+import { doubtsOf, insertRun, reasonFor, requireKeptReason } from "./record-run";
 
 /** A sample taken by hand at a task: a run with one reading of LAeq, and the photographs taken beside it. */
 export async function recordSample(
@@ -19,17 +19,19 @@ export async function recordSample(
     throw unprocessable([issue(["instrumentId"], "instrument-not-for-runs")]);
   const { startedAt, durationMin, date, taskId, surveyId } = input;
   checkInstants(site, { date, from: startedAt, fromField: "startedAt" });
-  const doubts = await doubtsOf({ instrumentId: instrument.id, date }, input, {
-    leastMin: await leastRunMin({ surveyId, taskId }),
-    shown: input.doubts,
-  });
+  const { workerId, checkBeforeDb, checkAfterDb } = input;
+  const doubts = await doubtsOf(
+    { instrumentId: instrument.id, workerId, date },
+    { checkBeforeDb, checkAfterDb, durationMin, covers: "part" },
+    { leastMin: await leastRunMin({ surveyId, taskId }), shown: input.doubts, needsChecks: true },
+  );
   requireKeptReason(doubts, input.keptReason);
   const runId = await insertRun(
     actor,
     {
       siteId: site.id,
       instrumentId: instrument.id,
-      workerId: input.workerId,
+      workerId,
       surveyId,
       taskId,
       place: input.place,
@@ -41,10 +43,10 @@ export async function recordSample(
     },
     {
       durationMin,
-      checkBeforeDb: input.checkBeforeDb,
-      checkAfterDb: input.checkAfterDb,
+      checkBeforeDb,
+      checkAfterDb,
       covers: "part",
-      keptReason: input.keptReason,
+      keptReason: reasonFor(doubts, input.keptReason),
       unusual: input.unusual,
       doubts: doubts.map(({ code }) => code),
       readings: [

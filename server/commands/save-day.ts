@@ -1,6 +1,7 @@
 import { randomUUID } from "node:crypto";
 import type { ProblemIssue } from "../../shared/schemas/problem";
 import { isEmptyReading } from "../../shared/schemas/run";
+import { shiftDoubt } from "../../shared/schemas/run-doubts";
 import {
   checkShiftFacts,
   DayRowInput,
@@ -30,6 +31,7 @@ import {
   futureIssues,
   isSameShift,
   lockWorkers,
+  openEndIssues,
   overlapIssues,
   startOf,
   unknownTaskIssues,
@@ -165,7 +167,7 @@ export async function saveDay(
     );
     if (one.run && !instruments.has(one.run.instrumentId))
       issues.push(issue(["run", "instrumentId"], "instrument-unknown"));
-    if (one.run && doubtful.has(index)) issues.push(issue(["run", "instrumentId"], "run-doubtful"));
+    issues.push(...(doubtful.get(index) ?? []));
     one.run?.readings.forEach((reading, at) => {
       if (isEmptyReading(reading)) issues.push(issue(["run", "readings", at], "reading-empty"));
     });
@@ -192,6 +194,10 @@ export async function saveDay(
       issues.push(...overlapIssues({ startsAt, lengthMin: one.lengthMin }, others));
     }
     const isUnchanged = own !== null && isSameShift(one, own);
+    if (startsAt && !isUnchanged) {
+      const span = { startsAt, lengthMin: one.lengthMin };
+      issues.push(...openEndIssues(span, site.timeZone, one.confirmsOpenEnd));
+    }
     if (own && !isUnchanged && one.reason === null)
       issues.push(issue(["reason"], "reason-missing"));
     if (issues.length > 0 || !startsAt) {
@@ -337,30 +343,47 @@ async function knownInstruments(ids: readonly string[]): Promise<Set<string>> {
   return new Set(found.map(({ id }) => id));
 }
 
-/** Rows whose instrument had no certificate on that day, unless somebody has said already why the run is kept. */
+/**
+ * What speaks against the runs of rows, by the row: an instrument without a certificate on that day, or a length that is
+ * not the shift's. Not where somebody has said already why the run is kept.
+ */
 async function doubtfulRuns(
   date: string,
   worked: readonly { index: number; row: WorkedRowInput }[],
-): Promise<Set<number>> {
-  const given = worked.flatMap(({ index, row: { run } }) => (run ? [{ index, run }] : []));
+): Promise<Map<number, ProblemIssue[]>> {
+  const given = worked.flatMap(({ index, row: { run, lengthMin } }) =>
+    run ? [{ index, run, lengthMin }] : [],
+  );
   const states = await calibrationsOn(
     given.map(({ run: { instrumentId } }) => ({ instrumentId, date })),
   );
-  const without = given.filter((_, place) => {
+  const doubtful = given.flatMap(({ index, run, lengthMin }, place) => {
     const { dueOn, failedOn } = states[place]!;
-    return failedOn !== null || (dueOn !== null && dueOn < date);
+    const { durationMin, covers } = run;
+    const ofShift = shiftDoubt({
+      covers,
+      durationMin,
+      shift: { from: "", to: "", shiftMin: lengthMin, insideMin: null },
+    });
+    const issues = [
+      ...(failedOn !== null || (dueOn !== null && dueOn < date)
+        ? [issue(["run", "instrumentId"], "run-doubtful")]
+        : []),
+      ...(ofShift ? [issue(["run", "covers"], ofShift.code, { ...ofShift.params })] : []),
+    ];
+    return issues.length === 0 ? [] : [{ index, runId: run.runId, issues }];
   });
-  if (without.length === 0) return new Set();
+  const runIds = doubtful.flatMap(({ runId }) => runId ?? []);
   const kept = await rows<{ id: string }>(
     `SELECT r.id FROM runs r JOIN run_revisions v ON v.id = r.current_revision_id
      WHERE r.id = ANY (CAST(:ids AS uuid[])) AND v.kept_reason IS NOT NULL`,
-    { ids: `{${without.flatMap(({ run }) => run.runId ?? []).join(",")}}` },
+    { ids: `{${runIds.join(",")}}` },
   );
   const isKept = new Set(kept.map(({ id }) => id));
-  return new Set(
-    without
-      .filter(({ run }) => run.runId === null || !isKept.has(run.runId))
-      .map(({ index }) => index),
+  return new Map(
+    doubtful
+      .filter(({ runId }) => runId === null || !isKept.has(runId))
+      .map(({ index, issues }) => [index, issues]),
   );
 }
 
@@ -409,6 +432,7 @@ async function storeRun(
     existing,
     { ...run, ...kept, reason: one.reason ?? "corrected in the day's entry", isVoid: false },
     entryId,
+    { isInGrid: true },
   );
 }
 

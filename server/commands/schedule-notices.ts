@@ -1,5 +1,6 @@
 import { randomUUID } from "node:crypto";
-import { isNotified } from "../../shared/findings/notified";
+import { isNotified, NEWS_FOR_DAYS } from "../../shared/findings/notified";
+import type { FindingKind } from "../../shared/schemas/finding";
 import { addDays } from "../../shared/time/zone";
 import { todayAt } from "../lib/calendar";
 import { execute, row, rows } from "../lib/db";
@@ -11,9 +12,6 @@ interface Told {
   recipientId: string;
   audience: "officer" | "supervisor" | "worker";
 }
-
-/** Days further back are findings for the officer, and no news for anybody. Common practice, no source. */
-const NEWS_FOR_DAYS = 31;
 
 interface Scheduling {
   organizationId: string;
@@ -48,7 +46,7 @@ export async function scheduleNotices({
   if (earlier.some((state) => unsent.has(state))) await withdrawUnsent(days);
   if (earlier.some((state) => told.has(state)))
     await replaceSent({ organizationId, entryId, notBefore, days });
-  const news = recomputed.opened.filter((finding) => isNotified(finding) && finding.date >= oldest);
+  const news = await untoldFindings(recomputed, oldest);
   if (news.length === 0) return;
 
   const items: {
@@ -65,6 +63,33 @@ export async function scheduleNotices({
       items.push({ ...told, findingId, workerId, date, resultId });
   }
   await writeNotices(organizationId, siteId, entryId, notBefore, items, new Map());
+}
+
+interface News {
+  id: string;
+  kind: FindingKind;
+  criterion: string;
+  workerId: string;
+  date: string;
+  resultId: string;
+}
+
+/**
+ * Findings of which nobody was told yet and that a fresh one of these days shows, each with the latest such day. One that
+ * began longer ago is news as well: only its first days are not.
+ */
+async function untoldFindings({ days }: Recomputation, oldest: string): Promise<News[]> {
+  const fresh = days.filter(({ date, resultId }) => date >= oldest && resultId !== null);
+  if (fresh.length === 0) return [];
+  const found = await rows<News>(
+    `SELECT DISTINCT ON (f.id) f.id, f.kind, f.criterion, e.worker_id AS "workerId", e.date::text AS date, e.result_id AS "resultId"
+     FROM jsonb_to_recordset($1::jsonb) AS x("workerId" uuid, date date)
+     JOIN finding_evidence e ON e.worker_id = x."workerId" AND e.date = x.date JOIN findings f ON f.id = e.finding_id
+     WHERE f.state <> 'closed' AND NOT EXISTS (SELECT 1 FROM notice_items i WHERE i.finding_id = f.id)
+     ORDER BY f.id, e.date DESC, e.worker_id`,
+    [JSON.stringify(fresh.map(({ workerId, date }) => ({ workerId, date })))],
+  );
+  return found.filter(isNotified);
 }
 
 async function audiences(

@@ -5,7 +5,7 @@ import type { Actor } from "../lib/policy";
 import type { Instrument } from "../models/instrument";
 import { whereabouts } from "../queries/outings";
 import { checkInstants } from "./check-instants";
-import { doubtsOf, insertRun, requireKeptReason } from "./record-run";
+import { doubtsOf, insertRun, reasonFor, requireKeptReason } from "./record-run";
 
 /**
  * An instrument goes out: a run that has neither length nor reading until it is back.
@@ -26,25 +26,30 @@ export async function startOuting(
     throw new AppError("already-out", 409, { withName, authorName, outAt });
   }
   checkInstants(site, { date: input.date, from: input.outAt, fromField: "outAt" });
-  const facts = { durationMin: null, checkBeforeDb: input.checkBeforeDb, checkAfterDb: null };
-  const doubts = await doubtsOf({ instrumentId: instrument.id, date: input.date }, facts);
+  const facts = {
+    durationMin: null,
+    checkBeforeDb: input.checkBeforeDb,
+    checkAfterDb: null,
+    covers: "part" as const,
+  };
+  const { workerId, date } = input;
+  const doubts = await doubtsOf({ instrumentId: instrument.id, workerId, date }, facts);
   requireKeptReason(doubts, input.keptReason);
   const runId = await insertRun(
     actor,
     {
       siteId: site.id,
       instrumentId: instrument.id,
-      workerId: input.workerId,
+      workerId,
       areaId: input.areaId,
       surveyId: input.surveyId,
-      date: input.date,
+      date,
       isOut: true,
       span: { from: input.outAt, to: null },
     },
     {
       ...facts,
-      covers: "part",
-      keptReason: input.keptReason,
+      keptReason: reasonFor(doubts, input.keptReason),
       unusual: null,
       doubts: doubts.map(({ code }) => code),
       readings: [],

@@ -1,16 +1,19 @@
 import { randomUUID } from "node:crypto";
 import type { HistoryMapping, HistoryStoreOrder } from "../../shared/schemas/history";
-import { localDate } from "../../shared/time/zone";
 import { historyReadings } from "../histories/history-readings";
 import type { LevelsReply } from "../histories/history-worker";
 import { recordAudit } from "../lib/audit";
 import { execute, row } from "../lib/db";
 import type { Actor } from "../lib/policy";
+import { runOfImport } from "../queries/history-imports";
 import type { LabelledSettings } from "../queries/meter-settings";
 import { doubtsOfImport } from "./order-history-reading";
 import { recomputeRunDay } from "./recompute-run-day";
-import { insertRun } from "./record-run";
+import { insertRun, reasonFor } from "./record-run";
 import { writeHistoryReadings } from "./write-history-readings";
+
+/** Doubts that hang on what a run covers. */
+const OF_SHIFT: readonly string[] = ["outside-shift", "shorter-than-shift"];
 
 export interface HistoryToStore {
   importId: string;
@@ -23,15 +26,6 @@ export interface HistoryToStore {
   workerId: string | null;
   mapping: HistoryMapping;
   order: HistoryStoreOrder;
-}
-
-/** The one of a worker's shifts that a span lies in most. */
-async function shiftOf(workerId: string, startsAt: string, endsAt: string) {
-  return row<{ id: string; date: string }>(
-    `SELECT id, date::text AS date FROM shifts WHERE worker_id = :workerId AND NOT is_void AND starts_at < CAST(:endsAt AS timestamptz) AND ends_at > CAST(:startsAt AS timestamptz)
-     ORDER BY least(ends_at, CAST(:endsAt AS timestamptz)) - greatest(starts_at, CAST(:startsAt AS timestamptz)) DESC LIMIT 1`,
-    { workerId, startsAt, endsAt },
-  );
 }
 
 /**
@@ -147,6 +141,7 @@ async function runFor(
   { startsAt, endsAt, report, evaluation, settings, entryId }: RunFacts,
 ): Promise<{ id: string; workerId: string | null; date: string }> {
   const { covers, keptReason } = given.order;
+  const facing = await runOfImport(given.importId, { startsAt, endsAt });
   if (given.runId !== null) {
     const run = await row<{
       id: string;
@@ -160,32 +155,32 @@ async function runFor(
       { runId: given.runId },
     );
     if (!run) throw new Error("a run that is named by an import is there");
-    const doubts = await doubtsOfImport(
-      { instrumentId: given.instrumentId, date: run.date },
-      report,
-    );
+    const doubts = await doubtsOfImport(facing, report, covers);
+    // What an earlier span or purpose spoke against is judged anew by the history's own.
+    const codes = [
+      ...run.doubts.filter((code) => !OF_SHIFT.includes(code)),
+      ...doubts.map(({ code }) => code),
+    ];
     await writeHistoryReadings(actor, run.id, evaluation, settings, {
       reason: "history",
       entryId,
       facts: {
         covers,
-        keptReason: keptReason ?? run.keptReason,
-        doubts: [...new Set([...run.doubts, ...doubts.map(({ code }) => code)])],
+        keptReason: reasonFor(codes, keptReason ?? run.keptReason),
+        doubts: [...new Set(codes)],
       },
     });
     return run;
   }
-  const { workerId } = given;
-  const shift = workerId === null ? null : await shiftOf(workerId, startsAt, endsAt);
-  const date = shift?.date ?? localDate(new Date(startsAt), given.timeZone);
-  const doubts = await doubtsOfImport({ instrumentId: given.instrumentId, date }, report);
+  const { workerId, shiftId, date } = facing;
+  const doubts = await doubtsOfImport(facing, report, covers);
   const id = await insertRun(
     actor,
     {
       siteId: given.siteId,
       instrumentId: given.instrumentId,
       workerId,
-      shiftId: shift?.id ?? null,
+      shiftId,
       date,
       span: { from: startsAt, to: endsAt },
     },
@@ -194,7 +189,7 @@ async function runFor(
       checkBeforeDb: null,
       checkAfterDb: null,
       covers,
-      keptReason,
+      keptReason: reasonFor(doubts, keptReason),
       unusual: null,
       doubts: doubts.map(({ code }) => code),
       readings: historyReadings(evaluation, settings).map((reading) => ({

@@ -210,11 +210,17 @@ async function insertFindings(organizationId: string, fresh: readonly NewFinding
   if (fresh.length === 0) return;
   const json = JSON.stringify(fresh);
   await execute(
-    `INSERT INTO findings (id, organization_id, site_id, worker_id, job_id, kind, criterion, use_key, state, first_date, last_date, last_result_id, days_count, due_on, previous_id)
-     SELECT x.id, $1, x."siteId", x."workerId", x."jobId", x.kind, x.criterion, x."useKey", x.state, x.date, x.date, x."resultId", 0, x.date + x."dueIn", x."previousId"
+    `INSERT INTO findings (id, organization_id, site_id, worker_id, job_id, kind, criterion, use_key, state, first_date, last_date, last_result_id, days_count, previous_id)
+     SELECT x.id, $1, x."siteId", x."workerId", x."jobId", x.kind, x.criterion, x."useKey", x.state, x.date, x.date, x."resultId", 0, x."previousId"
      FROM jsonb_to_recordset($2::jsonb) AS x(id uuid, "siteId" uuid, "workerId" uuid, "jobId" uuid, kind text, criterion text, "useKey" text,
-       state text, date date, "resultId" uuid, "dueIn" int, "previousId" uuid)`,
+       state text, date date, "resultId" uuid, "previousId" uuid)`,
     [organizationId, json],
+  );
+  // Counted from the day on which it was noticed, by the site's clock: nobody is late for what was not known.
+  await execute(
+    `UPDATE findings f SET due_on = CAST(f.opened_at AT TIME ZONE s.time_zone AS date) + x."dueIn"
+     FROM jsonb_to_recordset($1::jsonb) AS x(id uuid, "dueIn" int), sites s WHERE f.id = x.id AND s.id = f.site_id`,
+    [json],
   );
   await execute(
     `INSERT INTO finding_steps (organization_id, finding_id, kind, from_state, to_state)
@@ -294,7 +300,7 @@ async function recountFindings(findingIds: readonly string[]): Promise<void> {
   );
 }
 
-/** When somebody has to have acted. Common practice, no source. */
+/** Days within which somebody has to have acted. Common practice, no source. */
 function dueInDays(kind: FindingKind): number {
   if (
     [

@@ -1,6 +1,6 @@
 import { setupI18n } from "@lingui/core";
 import { compileMessage } from "@lingui/message-utils/compileMessage";
-import { expect, test } from "vitest";
+import { describe, expect, test } from "vitest";
 import { type NoticedFinding, type NoticeFacts, overLimitMail } from "./over-limit";
 
 const i18n = setupI18n({ locale: "en", messages: { en: {} } }).setMessagesCompiler(compileMessage);
@@ -9,11 +9,13 @@ const peak: NoticedFinding = {
   kind: "peak-or-ceiling",
   facts: { levelDb: 141.6, valueDb: 140, what: "peak" },
   isStillOver: true,
+  closedOn: null,
 };
 const ceiling: NoticedFinding = {
   kind: "peak-or-ceiling",
   facts: { levelDb: 117.2, valueDb: 115, what: "ceiling" },
   isStillOver: true,
+  closedOn: null,
 };
 const atEar: NoticedFinding = {
   kind: "over-limit-at-ear",
@@ -23,15 +25,21 @@ const atEar: NoticedFinding = {
     remedy: { modelIds: ["a"], names: ["Fenmuff"], isHeld: false },
   },
   isStillOver: true,
+  closedOn: null,
 };
 
-function textOf(audience: NoticeFacts["audience"], findings: NoticedFinding[], atEarDb = 67.9) {
+function mailOf(
+  audience: NoticeFacts["audience"],
+  findings: NoticedFinding[],
+  atEarDb = 67.9,
+  replacesMailOf: string | null = null,
+) {
   return overLimitMail(i18n, "en", {
     audience,
     recipientName: "D. Tavernor",
     organizationName: "Engine works",
     siteName: "North yard",
-    replaces: false,
+    replacesMailOf,
     items: [
       {
         workerName: "D. Tavernor",
@@ -43,8 +51,9 @@ function textOf(audience: NoticeFacts["audience"], findings: NoticedFinding[], a
       },
     ],
     link: "https://noise.example.org/",
-  }).text;
+  });
 }
+const textOf = (...facts: Parameters<typeof mailOf>) => mailOf(...facts).text;
 
 test("a peak is told to the worker as a peak, not as the day's level at the ear", () => {
   const text = textOf("worker", [peak]);
@@ -74,6 +83,7 @@ test("over the limit without protection says nothing of the level at the ear", (
     kind: "over-limit-outside",
     facts: { levelDb: 91.3, valueDb: 90 },
     isStillOver: true,
+    closedOn: null,
   };
   const text = textOf("worker", [outside]);
   expect(text).toContain("the noise around you was more than is allowed");
@@ -100,4 +110,36 @@ test("a peak that a correction took away is no longer told of", () => {
   const gone = { ...peak, isStillOver: false };
   expect(textOf("worker", [gone])).toContain("not over the limit after all");
   expect(textOf("officer", [gone])).toContain("no longer over after the correction");
+});
+
+describe("a correction", () => {
+  const corrected = (audience: NoticeFacts["audience"], ...findings: NoticedFinding[]) =>
+    mailOf(audience, findings, 89.4, "2026-12-01");
+
+  test.each(["officer", "supervisor", "worker"] as const)(
+    "to the %s names the mail that it corrects, and asks for nothing in its subject",
+    (audience) => {
+      const { subject } = corrected(audience, { ...atEar, isStillOver: false });
+      expect(subject).toMatch(/^Correction to our mail of .*1 December/);
+      expect(subject).not.toContain("look after");
+    },
+  );
+
+  const closed = { ...atEar, closedOn: "2026-03-04" };
+
+  test("gives no order for what is closed, but says when it was dealt with", () => {
+    const { text } = corrected("supervisor", closed);
+    expect(text).not.toContain("Give Fenmuff");
+    expect(text).toMatch(/already dealt with on .*4 March/);
+    const both = corrected("officer", closed, peak).text;
+    expect(both).toContain("Find the impact, and damp it.");
+    expect(both).not.toContain("Give Fenmuff");
+  });
+
+  test("asks nothing of the worker for what is closed", () => {
+    const { text } = corrected("worker", closed);
+    expect(text).not.toMatch(/ask your supervisor|talk to your supervisor/);
+    expect(text).toMatch(/dealt with on .*4 March.* You need not do anything more/);
+    expect(corrected("worker", closed, peak).text).toContain("Tell your supervisor");
+  });
 });

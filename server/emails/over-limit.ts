@@ -14,6 +14,8 @@ export interface NoticedFinding {
   kind: FindingKind;
   facts: FindingFacts;
   isStillOver: boolean;
+  /** The date on which it was dealt with; null: it is open. */
+  closedOn: string | null;
 }
 
 export interface NoticeItem {
@@ -30,8 +32,8 @@ export interface NoticeFacts {
   recipientName: string;
   organizationName: string;
   siteName: string;
-  /** Said where this replaces what was sent before. */
-  replaces: boolean;
+  /** The date of the mail that this one replaces; null where it replaces none. */
+  replacesMailOf: string | null;
   items: readonly NoticeItem[];
   link: string;
 }
@@ -49,7 +51,7 @@ export function overLimitMail(i18n: I18n, locale: Locale, facts: NoticeFacts): M
   const lines =
     facts.audience === "worker" ? workerLines(i18n, locale, facts) : crewLines(i18n, locale, facts);
   const greeting = i18n.t("Hello {name},", { name: facts.recipientName });
-  const replaces = facts.replaces
+  const replaces = facts.replacesMailOf
     ? i18n.t("This replaces what we wrote before: the record was corrected.")
     : null;
   const open = i18n.t("Open in Dinward: {link}", { link: facts.link });
@@ -60,7 +62,7 @@ export function overLimitMail(i18n: I18n, locale: Locale, facts: NoticeFacts): M
   const paragraphs = [greeting, replaces, ...lines].filter((line) => line !== null);
   const subject = subjectOf(i18n, locale, facts);
   return {
-    subject: facts.replaces ? i18n.t("Correction: {subject}", { subject }) : subject,
+    subject,
     text: [...paragraphs, open, `${from}\n${foot}`].join("\n\n"),
     html: `<!doctype html><html lang="${locale}"><head><meta charset="utf-8"><title>${escapeHtml(subject)}</title></head>
 <body style="margin:0;background:#F5F0E4;color:#211D17;font:17px/1.45 'Atkinson Hyperlegible Next',Verdana,sans-serif">
@@ -72,7 +74,14 @@ ${paragraphs.map((paragraph) => `<p>${escapeHtml(paragraph).replaceAll("\n", "<b
   };
 }
 
-function subjectOf(i18n: I18n, locale: Locale, { audience, items }: NoticeFacts): string {
+function subjectOf(
+  i18n: I18n,
+  locale: Locale,
+  { audience, items, replacesMailOf }: NoticeFacts,
+): string {
+  // What was to be done may be undone by it: whom it is about, and what is left to do, is in the text.
+  if (replacesMailOf)
+    return i18n.t("Correction to our mail of {day}", { day: formatDay(replacesMailOf, locale) });
   if (audience === "worker")
     return i18n.t("About your shift on {day}", { day: formatDay(items[0]?.date ?? "", locale) });
   const workers = new Set(items.map(({ employeeNumber }) => employeeNumber)).size;
@@ -88,6 +97,11 @@ const urgencyOf = ({ kind }: NoticedFinding): number => {
 const stillOver = ({ findings }: NoticeItem): NoticedFinding[] =>
   findings.filter(({ isStillOver }) => isStillOver).toSorted((a, b) => urgencyOf(a) - urgencyOf(b));
 
+const isOpen = ({ closedOn }: NoticedFinding) => closedOn === null;
+
+const closedLast = (findings: readonly NoticedFinding[]): string =>
+  findings.reduce((last, { closedOn }) => (closedOn && closedOn > last ? closedOn : last), "");
+
 const isPeak = ({ kind }: NoticedFinding) => kind === "peak-or-ceiling";
 
 function workerLines(i18n: I18n, locale: Locale, { items }: NoticeFacts): string[] {
@@ -99,12 +113,20 @@ function workerLines(i18n: I18n, locale: Locale, { items }: NoticeFacts): string
         i18n.t("On {day} you were not over the limit after all.", { day }),
         i18n.t("You need not do anything."),
       ];
-    const bangs = over
+    const open = over.filter(isOpen);
+    if (open.length === 0)
+      return [
+        i18n.t("On {day} you were over the limit.", { day }),
+        i18n.t("That was dealt with on {day}. You need not do anything more.", {
+          day: formatDay(closedLast(over), locale),
+        }),
+      ];
+    const bangs = open
       .filter(isPeak)
       .map(({ kind, facts }) =>
         i18n.t("On {day}: {said}", { day, said: workerSentence(i18n, locale, kind, facts) }),
       );
-    const noise = over.filter((finding) => !isPeak(finding));
+    const noise = open.filter((finding) => !isPeak(finding));
     return [...(noise.length > 0 ? noiseLines(i18n, locale, item, noise) : []), ...bangs];
   });
 }
@@ -171,7 +193,14 @@ function crewLines(i18n: I18n, locale: Locale, { items }: NoticeFacts): string[]
             outside: formatLevelWithUnit(item.outsideDb, locale),
           });
     const orders = new Set(
-      over.map(({ kind, facts }) => `${orderSentence(i18n, locale, kind, facts)}.`),
+      over.map(({ kind, facts, closedOn }) =>
+        closedOn === null
+          ? `${orderSentence(i18n, locale, kind, facts)}.`
+          : i18n.t("{finding}: already dealt with on {day}.", {
+              finding: findingWord(i18n, kind),
+              day: formatDay(closedOn, locale),
+            }),
+      ),
     );
     return [`${head} ${[...new Set(what)].join("; ")}`, figures, ...orders]
       .filter(Boolean)

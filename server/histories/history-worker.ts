@@ -3,7 +3,7 @@ import type { HistoryHead, HistoryMapping, HistoryReport } from "../../shared/sc
 import { type Served, serveWorker } from "../lib/serve-worker";
 import { kindOf } from "./channels";
 import { CHUNK_VALUES, packLevels } from "./level-codec";
-import { readHead } from "./read-head";
+import { FileWithoutValues, readHead } from "./read-head";
 import { type HistoryToRead, readHistory } from "./read-history";
 import { WorkbookRefused } from "./workbook";
 
@@ -46,6 +46,8 @@ async function head({ file, remembered, sheet }: HeadTask): Promise<HeadReply> {
   try {
     return { head: await readHead(file, remembered, sheet ?? undefined), refused: null };
   } catch (error) {
+    if (error instanceof FileWithoutValues)
+      return { head: null, refused: { code: "file-without-values", params: {} } };
     if (!(error instanceof WorkbookRefused)) throw error;
     return { head: null, refused: { code: error.code, params: { ...error.params } } };
   }

@@ -1,7 +1,7 @@
 import { splitLine } from "../../shared/history-file/cells";
-import type { HistoryHead, HistoryMapping } from "../../shared/schemas/history";
+import type { HistoryHead, HistoryMapping, ProposedMapping } from "../../shared/schemas/history";
 import { decoderOf, firstBytes, isWorkbook } from "./open-source";
-import { delimiterOf, recognise } from "./recognise";
+import { delimiterOf, hasValues, recognise } from "./recognise";
 import { markLength, sniffEncoding } from "./text-encoding";
 import { readSheet, sheetNames } from "./workbook";
 
@@ -16,7 +16,7 @@ const cut = (rows: readonly (readonly string[])[]) =>
 /** A remembered mapping fits where its columns are there and hold what they should. */
 function fits(
   mapping: HistoryMapping,
-  proposed: HistoryMapping | null,
+  proposed: ProposedMapping | null,
   rows: readonly (readonly string[])[],
 ): boolean {
   const columns = mapping.levels.map(({ column }) => column);
@@ -34,7 +34,7 @@ function fits(
 
 function headOf(
   head: Omit<HistoryHead, "proposed" | "proposedFrom">,
-  recognised: HistoryMapping | null,
+  recognised: ProposedMapping | null,
   remembered: HistoryMapping | null,
 ): HistoryHead {
   if (remembered && fits(remembered, recognised, head.lines))
@@ -60,7 +60,14 @@ async function firstRows(file: string, sheet: string): Promise<string[][]> {
   return rows;
 }
 
-/** The beginning of a file as cells, and a mapping that fits what is seen in it. */
+/** A file that holds heads, or nothing: there is no line with values in it. */
+export class FileWithoutValues extends Error {}
+
+/**
+ * The beginning of a file as cells, and a mapping that fits what is seen in it.
+ *
+ * @throws FileWithoutValues where the whole of it was seen and none is there.
+ */
 export async function readHead(
   file: string,
   remembered: HistoryMapping | null,
@@ -71,16 +78,19 @@ export async function readHead(
     const sheets = await sheetNames(file);
     const named =
       sheet !== null && sheets.includes(sheet) ? [sheet] : sheets.slice(0, SHEETS_TRIED);
-    let shown: { lines: string[][]; recognised: HistoryMapping | null } = {
+    let shown: { lines: string[][]; recognised: ProposedMapping | null } = {
       lines: [],
       recognised: null,
     };
+    let hasAny = false;
     for (const name of named) {
       const lines = cut(await firstRows(file, name));
       const recognised = recognise(lines, ",", name, ".");
       if (shown.lines.length === 0 || recognised) shown = { lines, recognised };
+      hasAny ||= hasValues(lines) || lines.length >= LINES_SHOWN;
       if (recognised) break;
     }
+    if (!hasAny && named.length === sheets.length) throw new FileWithoutValues();
     return headOf(
       { format: "xlsx", encoding: null, sheets, lines: shown.lines },
       shown.recognised,
@@ -100,6 +110,8 @@ export async function readHead(
   const filled = texts.filter((line) => line.trim() !== "");
   const delimiter = delimiterOf(filled.slice(Math.min(12, Math.floor(filled.length / 2))));
   const lines = cut(texts.map((line) => splitLine(line, delimiter)));
+  if (all.length <= LINES_SHOWN && bytes.length < HEAD_BYTES && !hasValues(lines))
+    throw new FileWithoutValues();
   return headOf(
     { format: "text", encoding, sheets: [], lines, delimiter },
     recognise(lines, delimiter, null),

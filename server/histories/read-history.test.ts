@@ -4,7 +4,7 @@ import { join } from "node:path";
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
 import { MISSING } from "../../shared/acoustics/history";
 import { HistoryMapping } from "../../shared/schemas/history";
-import { readHead } from "./read-head";
+import { FileWithoutValues, readHead } from "./read-head";
 import { readHistory } from "./read-history";
 
 let folder = "";
@@ -188,6 +188,34 @@ describe("how a file may be written", () => {
   });
 });
 
+describe("what is recognised", () => {
+  const proposed = async (content: string) => (await readHead(put(content), null)).proposed;
+
+  test("a date and a time in two columns, also where a workbook wrote midnight beside the day", async () => {
+    const split = { kind: "date-and-time", dateColumn: 0, timeColumn: 1 };
+    const lines = (date: string) =>
+      rows(20, (index) => `${date},${second(index)},${84 + (index % 10) / 10}`);
+    for (const content of [
+      `Date,Time,LAeq\n${lines("2026-03-02")}`,
+      `Date,Time,LAeq\n${lines("2026-03-02 00:00:00")}`,
+      `Day,Clock reading,LAeq\n${lines("2026-03-02 00:00:00")}`,
+    ])
+      expect((await proposed(content))?.time).toEqual(split);
+    const { grid, found } = await read(`Date,Time,LAeq\n${lines("2026-03-02 00:00:00")}`);
+    expect(found).toEqual([]);
+    expect(grid?.levels[0]).toHaveLength(20);
+  });
+
+  test("the time, where no head says what the levels are", async () => {
+    const pascals = `Time,p\n${rows(20, (index) => `2026-03-02 ${second(index)},0.6`)}`;
+    expect(await proposed(pascals)).toMatchObject({
+      skipLines: 1,
+      time: { kind: "date-time", column: 0 },
+      levels: [],
+    });
+  });
+});
+
 describe("what is not as it should be", () => {
   test("missing seconds are filled and told, many of them asked about", async () => {
     const few = await read(`Time,LAeq\n${plain(10)}\n${plain(10, 13)}\n`);
@@ -329,18 +357,8 @@ describe("what is not as it should be", () => {
       },
     );
     expect(empty.found).toContain("refused column-empty 2");
-    expect(
-      (
-        await read("", {
-          mapping: {
-            skipLines: 0,
-            decimal: ".",
-            time: { kind: "date-time", column: 0 },
-            levels: [{ column: 1, channel: "laeq", unit: "dB" }],
-          } as never,
-        })
-      ).found,
-    ).toEqual(["refused no-values 1"]);
+    await expect(readHead(put(""), null)).rejects.toThrow(FileWithoutValues);
+    await expect(readHead(put("Time,LAeq\n"), null)).rejects.toThrow(FileWithoutValues);
   });
 });
 

@@ -5,7 +5,7 @@ import {
   readValue,
   splitLine,
 } from "../../shared/history-file/cells";
-import type { HistoryChannel, HistoryMapping } from "../../shared/schemas/history";
+import type { HistoryChannel, HistoryMapping, ProposedMapping } from "../../shared/schemas/history";
 
 type Delimiter = HistoryMapping["delimiter"];
 type Unit = HistoryMapping["levels"][number]["unit"];
@@ -125,15 +125,48 @@ function firstValues(rows: readonly (readonly string[])[], decimal: "." | ","): 
 }
 
 /**
- * A mapping that fits the beginning of a file by its heads and its values; null where no time or no level is recognised.
- * Only a proposal: an officer looks at it.
+ * Date and time of day in two columns, by their heads or by what stands in them. A workbook writes midnight beside a day,
+ * and the day zero before a time, so that each of them can look like both.
+ */
+function splitTime(
+  heads: readonly string[],
+  shapes: readonly ReturnType<typeof shapeOf>[],
+  values: readonly (readonly string[])[],
+): { dateColumn: number; timeColumn: number } | null {
+  const named = (head: TimeHead, shape: "date" | "time") =>
+    shapes.findIndex(
+      (found, column) =>
+        timeHead(heads[column] ?? "") === head && (found === shape || found === "date-time"),
+    );
+  const [byHead, byShape] = [named("date", "date"), shapes.indexOf("date-time")];
+  const dateColumn = byHead >= 0 ? byHead : byShape;
+  const timeColumn = named("time", "time") >= 0 ? named("time", "time") : shapes.indexOf("time");
+  if (dateColumn < 0 || timeColumn < 0 || dateColumn === timeColumn || values.length < 2)
+    return null;
+  // A day whose own time moves on says both by itself.
+  const clocks = new Set(values.map((row) => readDate(row[dateColumn] ?? "", "ymd")?.rest ?? ""));
+  return clocks.size > 1 ? null : { dateColumn, timeColumn };
+}
+
+/** Whether anything in these lines is a number or a time: heads alone are no history. */
+export const hasValues = (
+  rows: readonly (readonly string[])[],
+  decimal: "." | "," = ".",
+): boolean =>
+  rows.some((row) =>
+    row.some((cell) => ["number", "date", "time", "date-time"].includes(shapeOf(cell, decimal))),
+  );
+
+/**
+ * A mapping that fits the beginning of a file by its heads and its values; null where no time is recognised. Without a
+ * level that is recognised it proposes none. Only a proposal: an officer looks at it.
  */
 export function recognise(
   rows: readonly (readonly string[])[],
   delimiter: Delimiter,
   sheet: string | null,
   decimal: "." | "," = decimalOf(rows, delimiter),
-): HistoryMapping | null {
+): ProposedMapping | null {
   const first = firstValues(rows, decimal);
   if (first === null) return null;
   const values = rows.slice(first).filter((row) => row.some((cell) => cell !== ""));
@@ -151,11 +184,13 @@ export function recognise(
     return named >= 0 ? named : shapes.indexOf(shape);
   };
   const [dateTime, date, clock] = [find("date-time"), find("date"), find("time")];
+  const split = splitTime(heads, shapes, values);
   const elapsed = shapes.findIndex(
     (shape, column) => shape === "number" && timeHead(heads[column] ?? "") === "elapsed",
   );
   let time: HistoryMapping["time"];
-  if (dateTime >= 0) time = { kind: "date-time", column: dateTime };
+  if (split) time = { kind: "date-and-time", ...split };
+  else if (dateTime >= 0) time = { kind: "date-time", column: dateTime };
   else if (date >= 0 && clock >= 0)
     time = { kind: "date-and-time", dateColumn: date, timeColumn: clock };
   else if (clock >= 0)
@@ -183,8 +218,7 @@ export function recognise(
     const isPascals = /\[?\(?\bPa\b/.test(heads[column] ?? "");
     return [{ column, channel, unit: isPascals ? "Pa" : unitOfValues(numbers) }];
   });
-  if (levels.length === 0) return null;
-  const dateColumn = dateTime >= 0 ? dateTime : date;
+  const dateColumn = split?.dateColumn ?? (dateTime >= 0 ? dateTime : date);
   return {
     sheet,
     delimiter,

@@ -10,6 +10,9 @@ const isFormula = (text: string) => /^['=+@]/.test(text) || /^-[^\d]/.test(text)
  */
 export class Cells {
   readonly issues: ImportIssue[] = [];
+  /** Codes by line and column. */
+  private readonly refused = new Map<string, Set<string>>();
+  private readonly refusedLines = new Set<number>();
   private readonly hasDecimalCommas: boolean;
 
   constructor(
@@ -23,13 +26,26 @@ export class Cells {
   }
 
   refuse({ line }: CsvLine, field: string, code: string, params: ImportIssue["params"] = {}): null {
-    this.issues.push({ line, field, code, params });
+    const cell = `${line} ${field}`;
+    const codes = this.refused.get(cell) ?? new Set();
+    if (!codes.has(code)) this.issues.push({ line, field, code, params });
+    this.refused.set(cell, codes.add(code));
+    this.refusedLines.add(line);
     return null;
+  }
+
+  /** What a schema finds in a cell that was refused already only follows from that, and is not said. */
+  refuseUnlessRefused(at: CsvLine, field: string, code: string, params: ImportIssue["params"]) {
+    if (!this.isRefused(at, field)) this.refuse(at, field, code, params);
+  }
+
+  isRefused({ line }: CsvLine, field: string): boolean {
+    return this.refused.has(`${line} ${field}`);
   }
 
   /** Nothing was refused in any of these lines. */
   areGood(lines: readonly CsvLine[]): boolean {
-    return !this.issues.some(({ line }) => lines.some((one) => one.line === line));
+    return !lines.some(({ line }) => this.refusedLines.has(line));
   }
 
   text({ cells }: CsvLine, field: string): string | null {

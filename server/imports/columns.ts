@@ -58,6 +58,7 @@ export const IMPORT_COLUMNS: Readonly<Record<ImportKind, readonly ImportColumn[]
     ),
     optional("which_hour", "choice", "", "first or second, where the clock showed the start twice"),
     optional("whole_day", "choice", "", "yes, to confirm a shift of exactly 24 hours"),
+    optional("open_end", "choice", "", "yes, to confirm a shift whose end still lies ahead"),
     optional(
       "unaccounted",
       "choice",

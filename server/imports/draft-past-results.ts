@@ -58,7 +58,6 @@ export async function draftPastResults(
   const today = todayAt(site.timeZone);
   const seen = new Map<string, number>();
   const days = file.lines.flatMap((line): PastDay[] => {
-    const before = cells.issues.length;
     const number = cells.needed(line, "employee_number");
     const worker = number === null ? undefined : workers.get(number);
     if (number !== null && !worker) cells.refuse(line, "employee_number", "worker-unknown");
@@ -76,21 +75,23 @@ export async function draftPastResults(
       lengthMin: cells.neededNumber(line, "length_min"),
       grade,
     };
-    if (cells.issues.length > before || !worker || date === null || !ruleSet) return [];
-    if (given.levelDb === null && given.atEarDb === null) cells.refuse(line, "level_db", "empty");
+    if (given.levelDb === null && given.atEarDb === null && !cells.isRefused(line, "at_ear_db"))
+      cells.refuse(line, "level_db", "empty");
+    const parsed = PastResult.safeParse(given);
+    for (const { path, code, params } of parsed.error?.issues.map(toProblemIssue) ?? [])
+      cells.refuseUnlessRefused(line, columnOf[String(path[0])] ?? "", code, params);
     for (const { path, code, params } of [
-      ...employmentIssues(date, worker),
-      ...futureIssues(date, today),
+      ...(worker && date ? employmentIssues(date, worker) : []),
+      ...(date ? futureIssues(date, today) : []),
     ])
-      cells.refuse(line, String(path[0]), code, params);
+      cells.refuseUnlessRefused(line, String(path[0]), code, params);
+    if (!worker || date === null) return [];
     const earlier = seen.get(`${worker.id} ${date}`);
     if (earlier !== undefined) cells.refuse(line, "date", "day-twice", { line: earlier });
     seen.set(`${worker.id} ${date}`, line.line);
-    const parsed = PastResult.safeParse(given);
-    if (parsed.success) return [{ ...parsed.data, line, workerId: worker.id, date, ruleSet }];
-    for (const { path, code, params } of parsed.error.issues.map(toProblemIssue))
-      cells.refuse(line, columnOf[String(path[0])] ?? "", code, params);
-    return [];
+    return parsed.success && ruleSet
+      ? [{ ...parsed.data, line, workerId: worker.id, date, ruleSet }]
+      : [];
   });
 
   await lockWorkers([...new Set(days.map(({ workerId }) => workerId))]);

@@ -1,3 +1,4 @@
+import { ReadingFacts } from "../../shared/schemas/evaluation";
 import type { ProblemIssue } from "../../shared/schemas/problem";
 import { type RunInput, RunInput as RunSchema } from "../../shared/schemas/run";
 import { findRunDoubts } from "../../shared/schemas/run-doubts";
@@ -10,6 +11,7 @@ import type { Actor } from "../lib/policy";
 import type { Site } from "../models/site";
 import { calibrationsOn } from "../queries/calibrations";
 import { IS_OF_DAY } from "../queries/day-inputs";
+import { facedShifts } from "../queries/faced-shifts";
 import { type ImportWorker, workersByNumber } from "../queries/import-lookups";
 import { Cells } from "./cells";
 import { IMPORT_COLUMNS } from "./columns";
@@ -40,6 +42,8 @@ const ofReading: Record<string, string> = {
   peak: "peak_db",
   levelDb: "peak_db",
 };
+
+const readingColumns = [...new Set(Object.values(ofReading)), "peak_weighting"];
 
 function columnOf(path: ProblemIssue["path"]): string {
   const last = String(path.at(-1));
@@ -87,47 +91,46 @@ export async function draftReadings(actor: Actor, site: Site, file: CsvFile): Pr
   const recorded = await recordedRuns(workerIds);
   const today = todayAt(site.timeZone);
 
-  const fresh: { run: RunInput; first: CsvLine; lines: readonly CsvLine[] }[] = [];
+  const fresh: { run: RunInput; lines: readonly CsvLine[] }[] = [];
+  const asked: { run: RunInput; first: CsvLine }[] = [];
   const days: { workerId: string; date: string }[] = [];
   let unchanged = 0;
   for (const lines of groups) {
-    const before = cells.issues.length;
-    const draft = readRun(cells, lines, workers, instruments);
-    if (!draft || cells.issues.length > before) continue;
-    const { worker, facts, start } = draft;
+    const { worker, date, start, run: read } = readRun(cells, lines, workers, instruments);
     const first = lines[0]!;
     refuseAll(cells, lines, [
-      ...employmentIssues(facts.date, worker),
-      ...futureIssues(facts.date, today),
+      ...(worker && date ? employmentIssues(date, worker) : []),
+      ...(date ? futureIssues(date, today) : []),
     ]);
     const shiftId =
-      start === null
-        ? null
-        : (shiftIds.get(`${worker.id} ${facts.date} ${start}`) ??
-          cells.refuse(first, "start", "shift-unknown"));
-    const parsed = RunSchema.safeParse({ ...facts, shiftId });
-    if (!parsed.success) {
-      refuseAll(cells, lines, parsed.error.issues.map(toProblemIssue));
-      continue;
-    }
-    days.push({ workerId: worker.id, date: facts.date });
-    const same = recorded.get(keyOfRun(parsed.data));
-    if (same === undefined) fresh.push({ run: parsed.data, first, lines });
-    else if (same === factsOf(parsed.data)) unchanged += 1;
+      worker && date && start ? (shiftIds.get(`${worker.id} ${date} ${start}`) ?? null) : null;
+    if (worker && date && start && shiftId === null) cells.refuse(first, "start", "shift-unknown");
+    if (!read) continue;
+    const run = { ...read, shiftId };
+    const same = recorded.get(keyOfRun(run));
+    if (same === undefined && date) asked.push({ run, first });
+    if (!cells.areGood(lines)) continue;
+    days.push({ workerId: run.workerId, date: run.date });
+    if (same === undefined) fresh.push({ run, lines });
+    else if (same === factsOf(run)) unchanged += 1;
     // A recorded run is corrected on its own page, with its reason and its readings beside the earlier ones.
     else cells.refuse(first, "instrument_serial", "reading-recorded-already");
   }
-  const states = await calibrationsOn(fresh.map(({ run }) => run));
-  fresh.forEach(({ run, first }, place) => {
-    const { date, keptReason, checkBeforeDb, checkAfterDb } = run;
+  const states = await calibrationsOn(asked.map(({ run }) => run));
+  const faced = await facedShifts(asked.map(({ run }) => run));
+  asked.forEach(({ run, first }, place) => {
+    const { date, keptReason, checkBeforeDb, checkAfterDb, durationMin, covers } = run;
     if (keptReason !== null) return;
     const found = findRunDoubts({
       checkBeforeDb,
       checkAfterDb,
       date,
       calibration: states[place]!,
-      durationMin: null,
+      durationMin,
       leastMin: null,
+      needsChecks: false,
+      covers,
+      shift: faced[place] ?? null,
       shown: [],
     });
     for (const { code, params } of found) cells.refuse(first, "kept_reason", code, { ...params });
@@ -149,9 +152,27 @@ export async function draftReadings(actor: Actor, site: Site, file: CsvFile): Pr
 function refuseAll(cells: Cells, lines: readonly CsvLine[], issues: readonly ProblemIssue[]): void {
   for (const { path, code, params } of issues) {
     const at = path[0] === "readings" && typeof path[1] === "number" ? lines[path[1]] : lines[0];
-    cells.refuse(at ?? lines[0]!, columnOf(path), code, params);
+    cells.refuseUnlessRefused(at ?? lines[0]!, columnOf(path), code, params);
   }
 }
+
+/** Stand for what is missing or refused, so that everything else of the run is looked at all the same. */
+const STAND_IN = {
+  id: "00000000-0000-4000-8000-000000000000",
+  date: "2000-01-01",
+  durationMin: 480,
+  covers: "part",
+  reading: {
+    settings: {
+      criterionLevelDb: 90,
+      exchangeRateDb: 5,
+      thresholdDb: 80,
+      weighting: "A",
+      response: "slow",
+    },
+    averageDb: 80,
+  },
+} as const;
 
 function readRun(
   cells: Cells,
@@ -180,44 +201,48 @@ function readRun(
   const covers =
     cells.choice(first, "covers", ["shift", "projected", "part"]) ??
     (first.cells.get("covers") ? null : cells.refuse(first, "covers", "empty"));
-  const readings = lines.map((line) => {
-    const peakDb = cells.number(line, "peak_db");
-    const weighting = cells.choice(line, "peak_weighting", ["A", "C", "Z"]);
-    if ((peakDb === null) !== (weighting === null))
-      cells.refuse(line, peakDb === null ? "peak_db" : "peak_weighting", "empty");
-    return {
-      settings: {
-        criterionLevelDb: cells.neededNumber(line, "criterion_level_db"),
-        exchangeRateDb: cells.neededNumber(line, "exchange_rate_db"),
-        thresholdDb: cells.number(line, "threshold_db"),
-        weighting: cells.choice(line, "weighting", ["A", "C", "Z"]),
-        response: cells.choice(line, "response", ["slow", "fast", "none"]),
-      },
-      dosePct: cells.number(line, "dose_pct"),
-      averageDb: cells.number(line, "average_db"),
-      lceqDb: cells.number(line, "lceq_db"),
-      lasMaxDb: cells.number(line, "las_max_db"),
-      peak: peakDb === null || weighting === null ? null : { levelDb: peakDb, weighting },
-    };
+  const parsed = RunSchema.safeParse({
+    workerId: worker?.id ?? STAND_IN.id,
+    date: date ?? STAND_IN.date,
+    instrumentId: instrumentId ?? STAND_IN.id,
+    durationMin: durationMin ?? STAND_IN.durationMin,
+    covers: covers ?? STAND_IN.covers,
+    readings: lines.map((line) => readReading(cells, line) ?? STAND_IN.reading),
+    checkBeforeDb: cells.number(first, "check_before_db"),
+    checkAfterDb: cells.number(first, "check_after_db"),
+    keptReason: cells.text(first, "kept_reason"),
+    unusual: cells.text(first, "unusual"),
   });
-  if (!worker || date === null || instrumentId === null || durationMin === null || covers === null)
-    return null;
-  return {
-    worker,
-    start,
-    facts: {
-      workerId: worker.id,
-      date,
-      instrumentId,
-      durationMin,
-      covers,
-      readings,
-      checkBeforeDb: cells.number(first, "check_before_db"),
-      checkAfterDb: cells.number(first, "check_after_db"),
-      keptReason: cells.text(first, "kept_reason"),
-      unusual: cells.text(first, "unusual"),
+  if (!parsed.success) refuseAll(cells, lines, parsed.error.issues.map(toProblemIssue));
+  return { worker, date, start, run: parsed.success ? parsed.data : null };
+}
+
+/** One line of a run; null where something in it is refused. */
+function readReading(cells: Cells, line: CsvLine): Reading | null {
+  const peakDb = cells.number(line, "peak_db");
+  const weighting = cells.choice(line, "peak_weighting", ["A", "C", "Z"]);
+  if ((peakDb === null) !== (weighting === null))
+    cells.refuse(line, peakDb === null ? "peak_db" : "peak_weighting", "empty");
+  const parsed = ReadingFacts.safeParse({
+    settings: {
+      criterionLevelDb: cells.neededNumber(line, "criterion_level_db"),
+      exchangeRateDb: cells.neededNumber(line, "exchange_rate_db"),
+      thresholdDb: cells.number(line, "threshold_db"),
+      weighting: cells.choice(line, "weighting", ["A", "C", "Z"]),
+      response: cells.choice(line, "response", ["slow", "fast", "none"]),
     },
-  };
+    dosePct: cells.number(line, "dose_pct"),
+    averageDb: cells.number(line, "average_db"),
+    lceqDb: cells.number(line, "lceq_db"),
+    lasMaxDb: cells.number(line, "las_max_db"),
+    peak: peakDb === null || weighting === null ? null : { levelDb: peakDb, weighting },
+  });
+  if (!parsed.success) {
+    for (const { path, code, params } of parsed.error.issues.map(toProblemIssue))
+      cells.refuseUnlessRefused(line, ofReading[String(path.at(-1))] ?? "", code, params);
+    return null;
+  }
+  return readingColumns.some((name) => cells.isRefused(line, name)) ? null : parsed.data;
 }
 
 const keyOfRun = ({

@@ -1,15 +1,15 @@
 import type { Unaccounted } from "../../shared/acoustics/types";
 import type { ProblemIssue } from "../../shared/schemas/problem";
-import { checkShiftFacts, ShiftFacts } from "../../shared/schemas/shift";
+import { checkShiftFacts, ShiftFacts, ShiftTaskInput } from "../../shared/schemas/shift";
 import { addDays } from "../../shared/time/zone";
 import {
   employmentIssues,
   futureIssues,
   isSameShift,
   lockWorkers,
+  openEndIssues,
   overlapIssues,
   startOf,
-  unknownTaskIssues,
   wholeDayIssues,
 } from "../commands/check-shift";
 import { type CheckedShift, storeShifts } from "../commands/store-shifts";
@@ -53,6 +53,7 @@ interface Draft {
   date: string;
   facts: ReturnType<typeof ShiftFacts.parse>;
   confirmsWholeDay: boolean;
+  confirmsOpenEnd: boolean;
   crewName: string | null;
   startsAt: Date;
 }
@@ -65,6 +66,7 @@ const shiftColumns = [
   "crew",
   "which_hour",
   "whole_day",
+  "open_end",
   "unaccounted",
   "unaccounted_level_db",
   "note",
@@ -86,22 +88,18 @@ export async function draftShifts(
   const taskIds = await idsByName("tasks", site.id);
   const crewIds = await idsByName("crews", site.id);
   const today = todayAt(site.timeZone);
-  const known = new Set(taskIds.values());
 
   const drafts = groups.flatMap((lines): Draft[] => {
-    const before = cells.issues.length;
-    const draft = readShift(cells, lines, workers, taskIds, crewIds);
-    if (!draft || cells.issues.length > before) return [];
-    const { date, worker, facts, confirmsWholeDay } = draft;
+    const { worker, date, isTimed, ...read } = readShift(cells, lines, workers, taskIds, crewIds);
+    const { facts, confirmsWholeDay } = read;
     const issues = [
-      ...employmentIssues(date, worker),
-      ...futureIssues(date, today),
-      ...wholeDayIssues(facts.lengthMin, confirmsWholeDay),
-      ...unknownTaskIssues(facts.tasks, known),
+      ...(worker && date ? employmentIssues(date, worker) : []),
+      ...(date ? futureIssues(date, today) : []),
+      ...(facts ? wholeDayIssues(facts.lengthMin, confirmsWholeDay) : []),
     ];
-    const startsAt = startOf(date, facts, site.timeZone, issues);
+    const startsAt = date && facts && isTimed ? startOf(date, facts, site.timeZone, issues) : null;
     refuseAll(cells, lines, issues);
-    return startsAt ? [{ ...draft, startsAt }] : [];
+    return worker && date && facts && startsAt ? [{ ...read, worker, date, facts, startsAt }] : [];
   });
 
   const workerIds = [...new Set(drafts.map(({ worker }) => worker.id))];
@@ -130,10 +128,15 @@ export async function draftShifts(
         : ("fresh" as const),
     };
   });
+  for (const { lines, state, startsAt, facts, confirmsOpenEnd } of accepted) {
+    const span = { startsAt, lengthMin: facts.lengthMin };
+    if (state !== "unchanged")
+      refuseAll(cells, lines, openEndIssues(span, site.timeZone, confirmsOpenEnd));
+  }
   refuseOverlaps(cells, accepted, nearby);
   const good = accepted.filter(({ lines }) => cells.areGood(lines));
   if (reason === null) {
-    for (const { lines, state } of accepted)
+    for (const { lines, state } of good)
       if (state === "changed") cells.refuse(lines[0]!, "", "reason-missing");
   }
 
@@ -177,8 +180,25 @@ export async function draftShifts(
 function refuseAll(cells: Cells, lines: readonly CsvLine[], issues: readonly ProblemIssue[]): void {
   for (const { path, code, params } of issues) {
     const at = path[0] === "tasks" && typeof path[1] === "number" ? lines[path[1]] : lines[0];
-    cells.refuse(at ?? lines[0]!, columnOf(path), code, params);
+    cells.refuseUnlessRefused(at ?? lines[0]!, columnOf(path), code, params);
   }
+}
+
+/** Stand for what is missing or refused, so that everything else of the shift is looked at all the same. */
+const STAND_IN = { localStart: "00:00", lengthMin: 1439, durationMin: 1e-9 } as const;
+
+/** Another id for each line: a task that is refused is not one that stands there twice. */
+const standInTask = (place: number) =>
+  `00000000-0000-4000-8000-${place.toString(16).padStart(12, "0")}`;
+
+interface ReadShift
+  extends Pick<Draft, "lines" | "confirmsWholeDay" | "confirmsOpenEnd" | "crewName"> {
+  worker: ImportWorker | undefined;
+  date: string | null;
+  /** With stand-ins for what was refused; null where more is wrong with it. */
+  facts: Draft["facts"] | null;
+  /** Start and length are the file's own. */
+  isTimed: boolean;
 }
 
 function readShift(
@@ -187,7 +207,7 @@ function readShift(
   workers: ReadonlyMap<string, ImportWorker>,
   taskIds: ReadonlyMap<string, string>,
   crewIds: ReadonlyMap<string, string>,
-): Omit<Draft, "startsAt"> | null {
+): ReadShift {
   const first = lines[0]!;
   for (const line of lines.slice(1)) {
     for (const name of shiftColumns) {
@@ -205,19 +225,9 @@ function readShift(
   const lengthMin = cells.neededNumber(first, "length_min");
   const crewName = cells.text(first, "crew");
   if (crewName !== null && !crewIds.has(crewName)) cells.refuse(first, "crew", "crew-unknown");
-  const tasks = lines.flatMap((line) => {
-    const name = cells.text(line, "task");
-    const wornPct = cells.number(line, "worn_pct");
-    if (name === null) {
-      if (line.cells.get("minutes") || lines.length > 1) cells.refuse(line, "task", "empty");
-      return [];
-    }
-    const taskId = taskIds.get(name) ?? cells.refuse(line, "task", "task-unknown");
-    const durationMin = cells.neededNumber(line, "minutes");
-    return taskId === null || durationMin === null
-      ? []
-      : [{ taskId, durationMin, wornPct, wornIsShiftWide: false }];
-  });
+  const hasTasks =
+    lines.length > 1 || Boolean(first.cells.get("task")) || Boolean(first.cells.get("minutes"));
+  const tasks = hasTasks ? lines.map((line, place) => readTask(cells, line, place, taskIds)) : [];
   const how =
     cells.choice(first, "unaccounted", ["unknown", "like-the-rest", "quiet"]) ?? "unknown";
   const quietDb = cells.number(first, "unaccounted_level_db");
@@ -225,26 +235,48 @@ function readShift(
   if (how !== "quiet" && quietDb !== null)
     cells.refuse(first, "unaccounted_level_db", "only-where-quiet");
   const unaccounted: Unaccounted =
-    how === "quiet" ? { how, levelDb: quietDb ?? Number.NaN } : { how };
-  const whichHour = cells.choice(first, "which_hour", ["first", "second"]);
-  const confirmsWholeDay = cells.choice(first, "whole_day", ["yes"]) === "yes";
-  if (!worker || date === null || localStart === null || lengthMin === null) return null;
+    how === "quiet" && quietDb !== null ? { how, levelDb: quietDb } : { how: "unknown" };
   const parsed = ShiftFacts.safeParse({
-    localStart,
-    whichHour,
-    lengthMin,
-    unaccounted,
+    localStart: localStart ?? STAND_IN.localStart,
+    whichHour: cells.choice(first, "which_hour", ["first", "second"]),
+    lengthMin: lengthMin ?? STAND_IN.lengthMin,
+    unaccounted: how === "like-the-rest" ? { how } : unaccounted,
     tasks,
     note: cells.text(first, "note"),
   });
+  const confirmsWholeDay = cells.choice(first, "whole_day", ["yes"]) === "yes";
+  const confirmsOpenEnd = cells.choice(first, "open_end", ["yes"]) === "yes";
+  const read = { lines, worker, date, confirmsWholeDay, confirmsOpenEnd, crewName };
   if (!parsed.success) {
     refuseAll(cells, lines, parsed.error.issues.map(toProblemIssue));
-    return null;
+    return { ...read, facts: null, isTimed: false };
   }
   const shape = { value: parsed.data, issues: [] as Parameters<typeof toProblemIssue>[0][] };
   checkShiftFacts(shape);
   refuseAll(cells, lines, shape.issues.map(toProblemIssue));
-  return { lines, worker, date, facts: parsed.data, confirmsWholeDay, crewName };
+  return { ...read, facts: parsed.data, isTimed: localStart !== null && lengthMin !== null };
+}
+
+/** One line's task, each of its cells looked at by itself. */
+function readTask(
+  cells: Cells,
+  line: CsvLine,
+  place: number,
+  taskIds: ReadonlyMap<string, string>,
+): ShiftTaskInput {
+  const name = cells.needed(line, "task");
+  const taskId =
+    name === null ? null : (taskIds.get(name) ?? cells.refuse(line, "task", "task-unknown"));
+  const parsed = ShiftTaskInput.safeParse({
+    taskId: taskId ?? standInTask(place),
+    durationMin: cells.neededNumber(line, "minutes") ?? STAND_IN.durationMin,
+    wornPct: cells.number(line, "worn_pct"),
+  });
+  if (parsed.success) return parsed.data;
+  for (const { path, code, params } of parsed.error.issues.map(toProblemIssue))
+    cells.refuseUnlessRefused(line, columnOf(["tasks", place, ...path]), code, params);
+  const { durationMin } = STAND_IN;
+  return { taskId: standInTask(place), durationMin, wornPct: null, wornIsShiftWide: false };
 }
 
 async function shiftsAround(

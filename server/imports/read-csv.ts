@@ -1,5 +1,6 @@
 import { Readable } from "node:stream";
 import { type Info, parse } from "csv-parse";
+import { parse as parseAtOnce } from "csv-parse/sync";
 import type { ImportIssue } from "../../shared/schemas/import";
 import { AppError } from "../lib/errors";
 import type { ImportColumn } from "./columns";
@@ -56,6 +57,20 @@ function* pieces(text: string): Generator<string> {
 }
 
 /**
+ * A quoted cell that goes on after its closing mark, so that nobody knows where it ends. A mark within a cell that is not
+ * quoted (`3" pipe`, `=SUM("A1")`) is plain text.
+ */
+function isQuoteBroken(raw: string, delimiter: Delimiter): boolean {
+  if (!raw.includes('"')) return false;
+  try {
+    parseAtOnce(raw, { delimiter, relax_column_count: true });
+    return false;
+  } catch (error) {
+    return (error as { code?: string }).code === "CSV_INVALID_CLOSING_QUOTE";
+  }
+}
+
+/**
  * The lines of a CSV file by the columns that its header names, in any order. Comma, semicolon and tab are recognized.
  * What is wrong with the file's shape comes back as issues.
  *
@@ -68,16 +83,27 @@ export async function readCsv(
 ): Promise<CsvFile> {
   const delimiter = delimiterOf(text, new Set(columns.map(({ name }) => name)));
   const parser = Readable.from(pieces(text)).pipe(
-    parse({ bom: true, delimiter, info: true, relax_column_count: true, skip_empty_lines: true }),
+    parse({
+      bom: true,
+      delimiter,
+      info: true,
+      raw: true,
+      relax_column_count: true,
+      relax_quotes: true,
+      skip_empty_lines: true,
+    }),
   );
   const lines: CsvLine[] = [];
   const issues: ImportIssue[] = [];
   let header: string[] | null = null;
+  let readLines = 0;
   try {
-    for await (const { record, info } of parser as AsyncIterable<{
+    for await (const { record, info, raw } of parser as AsyncIterable<{
       record: string[];
       info: Info;
+      raw: string;
     }>) {
+      readLines = info.lines;
       if (!header) {
         header = record.map(headerName);
         issues.push(...headerIssues(header, columns));
@@ -87,6 +113,10 @@ export async function readCsv(
       if (record.every((cell) => cell.trim() === "")) continue;
       if (lines.length >= linesLimit) throw new AppError("too-large", 413, { linesLimit });
       const line = info.lines;
+      if (isQuoteBroken(raw, delimiter)) {
+        issues.push({ line, field: "", code: "quote-broken", params: {} });
+        continue;
+      }
       if (record.length !== header.length) {
         issues.push({
           line,
@@ -102,9 +132,9 @@ export async function readCsv(
       });
     }
   } catch (error) {
-    const { code, lines: line } = error as { code?: string; lines?: number };
-    if (!code?.startsWith("CSV_")) throw error;
-    issues.push({ line: line ?? 0, field: "", code: "quote-broken", params: {} });
+    if ((error as { code?: string }).code !== "CSV_QUOTE_NOT_CLOSED") throw error;
+    // The mark that nothing closes swallows the rest of the file: it stands after what could be read.
+    issues.push({ line: readLines + 1, field: "", code: "quote-broken", params: {} });
   }
   if (header && lines.length === 0 && issues.length === 0)
     issues.push({ line: 1, field: "", code: "no-lines", params: {} });

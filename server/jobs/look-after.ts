@@ -1,6 +1,8 @@
+import { closeFitDues, openFitDues } from "../commands/follow-fits";
 import { queueRecompute } from "../commands/mark-days-stale";
 import { queueHistoryReading } from "../commands/order-history-reading";
 import { queueNotice } from "../commands/schedule-notices";
+import { queueCheck } from "../commands/start-microphone-check";
 import { queueAnalysis } from "../commands/start-recording";
 import { execute, inTransaction, organizationIds, rows, sequelize } from "../lib/db";
 import { fileStore } from "../lib/file-store";
@@ -32,8 +34,14 @@ export async function lookAfter(): Promise<void> {
         "SELECT id FROM recordings WHERE state IN ('uploaded', 'analysing') AND updated_at < now() - interval '1 minute'",
       );
       for (const { id } of unanalysed) await queueAnalysis(organizationId, id);
+      const unchecked = await rows<{ id: string }>(
+        "SELECT id FROM microphone_checks WHERE state = 'analysing' AND updated_at < now() - interval '1 minute'",
+      );
+      for (const { id } of unchecked) await queueCheck(organizationId, id);
       await deleteAudioDue(organizationId);
       await openCalibrationFindings(organizationId);
+      await closeFitDues(organizationId);
+      await openFitDues(organizationId);
       await execute("DELETE FROM idempotency_keys WHERE created_at < now() - interval '30 days'");
     });
   }

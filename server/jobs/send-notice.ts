@@ -114,14 +114,15 @@ interface HeadRow {
   language: string;
   organizationName: string;
   siteName: string;
-  replacesId: string | null;
+  replacesMailOf: string | null;
 }
 
 /** The notice as it reads now, in its reader's language. */
 export async function noticeMail(noticeId: string, publicUrl: string): Promise<Mail> {
   const head = await row<HeadRow>(
-    `SELECT n.audience, u.name AS "recipientName", u.language, o.name AS "organizationName", s.name AS "siteName", n.replaces_id AS "replacesId"
-     FROM notices n JOIN users u ON u.id = n.recipient_id JOIN organizations o ON o.id = n.organization_id JOIN sites s ON s.id = n.site_id WHERE n.id = :noticeId`,
+    `SELECT n.audience, u.name AS "recipientName", u.language, o.name AS "organizationName", s.name AS "siteName",
+       (coalesce(earlier.sent_at, earlier.attempted_at, earlier.not_before) AT TIME ZONE s.time_zone)::date::text AS "replacesMailOf"
+     FROM notices n LEFT JOIN notices earlier ON earlier.id = n.replaces_id JOIN users u ON u.id = n.recipient_id JOIN organizations o ON o.id = n.organization_id JOIN sites s ON s.id = n.site_id WHERE n.id = :noticeId`,
     { noticeId },
   );
   if (!head) throw new Error("the notice is gone");
@@ -129,6 +130,7 @@ export async function noticeMail(noticeId: string, publicUrl: string): Promise<M
   const items = await rows<NoticeItem>(
     `SELECT w.name AS "workerName", w.employee_number AS "employeeNumber", i.date::text AS date, r.at_ear_db AS "atEarDb", r.outside_db AS "outsideDb",
        jsonb_agg(jsonb_build_object('kind', f.kind, 'facts', f.facts || coalesce(own.figures, '{}'),
+         'closedOn', CASE WHEN f.state = 'closed' THEN f.closed_on END,
          'isStillOver', EXISTS (SELECT 1 FROM finding_evidence e WHERE e.finding_id = f.id AND e.worker_id = i.worker_id AND e.date = i.date))
          ORDER BY f.last_date DESC, f.id) AS findings
      FROM notice_items i JOIN findings f ON f.id = i.finding_id JOIN workers w ON w.id = i.worker_id JOIN day_results r ON r.id = i.result_id
@@ -141,7 +143,6 @@ export async function noticeMail(noticeId: string, publicUrl: string): Promise<M
   const i18n = await createI18n(locale);
   return overLimitMail(i18n, locale, {
     ...head,
-    replaces: head.replacesId !== null,
     items,
     link: `${publicUrl}/${head.audience === "worker" ? "" : head.audience === "supervisor" ? "crew-sheet" : "findings"}`,
   });

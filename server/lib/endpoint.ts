@@ -7,7 +7,7 @@ import { execute, inTransaction, row } from "./db";
 import { AppError, forbidden, fromDatabase, notFound, unprocessable, withSent } from "./errors";
 import { dropStaged, type StagedFile } from "./file-store";
 import type { Actor } from "./policy";
-import { readUpload } from "./upload";
+import { readUpload, type UploadSpec } from "./upload";
 
 type Method = "get" | "post" | "put" | "patch" | "delete";
 
@@ -36,10 +36,10 @@ export interface RouteSpec<
   /** The answer is shown once and never stored: a repeated key is refused instead of answered again. */
   isReplySecret?: boolean;
   /**
-   * A form with one file, read only once the caller may call; the body's schema gets its fields and the file's facts. Small
-   * ones are read into memory, the others into the file store's staging, from where the handler keeps them.
+   * A form with one file or several, read only once the caller may call; the body's schema gets its fields and the files'
+   * facts. Small ones are read into memory, the others into the file store's staging, from where the handler keeps them.
    */
-  upload?: { limitBytes: number; toStore?: boolean };
+  upload?: UploadSpec;
   /** The handler writes the answer itself, outside any transaction of the request. */
   streams?: boolean;
 }
@@ -53,6 +53,8 @@ export interface Call<P extends Schema, Q extends Schema, B extends Schema> {
   ifMatch: number;
   /** A file that came in and is dropped unless the handler keeps it; null where the route takes none. */
   staged: StagedFile | null;
+  /** Where the route takes several: all of them, in the form's order. */
+  stagedFiles: readonly StagedFile[];
   request: Request;
   response: Response;
 }
@@ -134,6 +136,7 @@ function toIssue(found: z.core.$ZodIssue) {
     if (typeof value === "string" || typeof value === "number") params[name] = value;
     else if (typeof value === "bigint") params[name] = Number(value);
   }
+  if ("inclusive" in found && found.inclusive === false) params.inclusive = "false";
   const custom =
     found.code === "custom" ? (found.params as { code?: string } | undefined) : undefined;
   const { code, ...more } = { code: found.code as string, ...custom };
@@ -201,11 +204,11 @@ function authorizeRoute(spec: RouteSpec, actor: Actor): void {
 }
 
 async function handle(route: Route, request: Request, response: Response): Promise<void> {
-  const uploaded: { staged: StagedFile | null } = { staged: null };
+  const uploaded: { staged: StagedFile[] } = { staged: [] };
   try {
     await answer(route, request, response, uploaded);
   } finally {
-    if (uploaded.staged) await dropStaged(uploaded.staged);
+    await Promise.all(uploaded.staged.map(dropStaged));
   }
 }
 
@@ -213,7 +216,7 @@ async function answer(
   route: Route,
   request: Request,
   response: Response,
-  uploaded: { staged: StagedFile | null },
+  uploaded: { staged: StagedFile[] },
 ): Promise<void> {
   const { spec } = route;
   const run = async (actor: Actor | null) => {
@@ -223,7 +226,8 @@ async function answer(
       query: parse(spec.query, request.query),
       body: parse(spec.body, request.body),
       ifMatch: spec.needsRevision ? readIfMatch(request) : 0,
-      staged: uploaded.staged,
+      staged: uploaded.staged[0] ?? null,
+      stagedFiles: uploaded.staged,
       request,
       response,
     };

@@ -8,6 +8,7 @@ export interface JobPayloads {
   /** Reads a time history's file: a report, and once it is ordered the levels. */
   "read-history": { organizationId: string; importId: string };
   "analyse-recording": { organizationId: string; recordingId: string };
+  "check-microphones": { organizationId: string; checkId: string };
 }
 export type JobName = keyof JobPayloads;
 

@@ -2,6 +2,7 @@ import { z } from "zod";
 import { Problem } from "../../shared/schemas/problem";
 import { CSRF_COOKIE, CSRF_HEADER } from "./csrf";
 import type { Route } from "./endpoint";
+import type { UploadSpec } from "./upload";
 
 const CSRF_DESCRIPTION = `The value of the cookie ${CSRF_COOKIE}, which comes with the sign-in. Every change by a signed-in person carries it; without it the answer is 403 with the code csrf.`;
 
@@ -29,10 +30,13 @@ function parameters(schema: z.ZodType | undefined, where: "path" | "query"): Jso
   }));
 }
 
-/** A form with one file: what is said of the file in the body is the server's own. */
-function formOf(schema: z.ZodType): Json {
+/** A form with one file or several: what is said of them in the body is the server's own. */
+function formOf(schema: z.ZodType, { atMost }: UploadSpec): Json {
   const { properties, ...form } = toJson(schema, "input") as { properties: Record<string, Json> };
-  return { ...form, properties: { ...properties, file: { type: "string", format: "binary" } } };
+  const file = { type: "string", format: "binary" };
+  const sent =
+    atMost === undefined ? { file } : { files: { type: "array", items: file, maxItems: atMost } };
+  return { ...form, properties: { ...properties, ...sent } };
 }
 
 /** OpenAPI 3.1 from the very schemas that parse requests and replies. */
@@ -83,7 +87,7 @@ export function buildOpenApi(routes: readonly Route[], url: string): Json {
             requestBody: {
               required: true,
               content: spec.upload
-                ? { "multipart/form-data": { schema: formOf(spec.body) } }
+                ? { "multipart/form-data": { schema: formOf(spec.body, spec.upload) } }
                 : { "application/json": { schema: toJson(spec.body, "input") } },
             },
           }

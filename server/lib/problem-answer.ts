@@ -3,6 +3,7 @@ import type { Request, Response } from "express";
 import { createI18n, LOCALES, type Locale, pickLocale } from "../../shared/i18n";
 import { codeText } from "../../shared/problems/code-text";
 import { issueText } from "../../shared/problems/issue-text";
+import { recordingText } from "../../shared/recordings/recording-text";
 import type { Problem } from "../../shared/schemas/problem";
 import type { AppError } from "./errors";
 
@@ -34,14 +35,17 @@ function localeOf(request: Request, response: Response): Locale {
 const catalogues = new Map<Locale, Promise<I18n>>();
 
 function catalogue(locale: Locale): Promise<I18n> {
-  const known = catalogues.get(locale) ?? createI18n(locale, ["base", "mail"]);
+  const known = catalogues.get(locale) ?? createI18n(locale, ["base", "measuring", "mail"]);
   catalogues.set(locale, known);
   return known;
 }
 
 export function describeProblem(i18n: I18n, error: AppError, requestId: string): Problem {
   const { code, status, params, extra } = error;
-  const issues = error.issues.map((issue) => ({ ...issue, text: issueText(i18n, issue) }));
+  const issues = error.issues.map((issue) => ({
+    ...issue,
+    text: recordingText(i18n, issue.code, issue.params ?? {}) ?? issueText(i18n, issue),
+  }));
   return {
     type: `/problems/${code}`,
     title: titleOf(i18n, status),

@@ -4,6 +4,7 @@ import { Worker } from "node:worker_threads";
 const WORKERS = {
   "history-worker": "histories/history-worker",
   "analyse-worker": "recordings/analyse-worker",
+  "pair-worker": "recordings/pair-worker",
 } as const;
 export type WorkerName = keyof typeof WORKERS;
 

@@ -15,7 +15,7 @@ function stagingStorage(limitBytes: number): { storage: StorageEngine; staged: S
           .stage(file.stream, limitBytes)
           .then((one) => {
             staged.push(one);
-            done(null, { size: one.sizeBytes });
+            done(null, { size: one.sizeBytes, path: one.path, filename: one.sha256 });
           }, done);
       },
       _removeFile(_request, _file, done) {
@@ -25,21 +25,38 @@ function stagingStorage(limitBytes: number): { storage: StorageEngine; staged: S
   };
 }
 
+export interface UploadSpec {
+  /** Of each file. */
+  limitBytes: number;
+  toStore?: boolean;
+  /** Several files, under `files`; absent: one, under `file`. */
+  atMost?: number;
+}
+
 /**
- * Reads a form with one file: into memory, its bytes then in `request.file`; or into the file store's staging. What is to
- * be said of it goes into the body, so that its digest is part of what an Idempotency-Key stands for.
+ * Reads a form with one file or several: into memory, its bytes then in `request.file`; or into the file store's staging,
+ * in the form's order. What is to be said of them goes into the body, so that their digests are part of what an
+ * Idempotency-Key stands for.
  *
  * @throws AppError too-large
  */
 export async function readUpload(
   request: Request,
   response: Response,
-  { limitBytes, toStore = false }: { limitBytes: number; toStore?: boolean },
-): Promise<StagedFile | null> {
-  const limits = { fileSize: limitBytes, files: 1, fields: 10, fieldSize: 10_000, parts: 12 };
+  { limitBytes, toStore = false, atMost }: UploadSpec,
+): Promise<StagedFile[]> {
+  const files = atMost ?? 1;
+  const limits = {
+    fileSize: limitBytes,
+    files,
+    fields: 10,
+    fieldSize: 10_000,
+    parts: 11 + files,
+  };
   const staging = toStore ? stagingStorage(limitBytes) : null;
   const storage = staging?.storage ?? multer.memoryStorage();
-  const read = multer({ storage, limits, defParamCharset: "utf8" }).single("file");
+  const form = multer({ storage, limits, defParamCharset: "utf8" });
+  const read = atMost === undefined ? form.single("file") : form.array("files", atMost);
   try {
     await new Promise<void>((resolve, reject) =>
       read(request, response, (error?: unknown) => (error ? reject(error) : resolve())),
@@ -51,13 +68,24 @@ export async function readUpload(
     if (error.code === "LIMIT_FILE_SIZE") throw new AppError("too-large", 413, { limitBytes });
     throw unprocessable([issue(["file"], "form-unreadable", { detail: error.code })]);
   }
-  const { file } = request;
-  if (!file) throw unprocessable([issue(["file"], "file-missing")]);
-  const staged = staging?.staged[0] ?? null;
-  const sha256 = staged?.sha256 ?? createHash("sha256").update(file.buffer).digest("hex");
+  const found = filesOf(request);
+  if (found.length === 0)
+    throw unprocessable([issue([atMost === undefined ? "file" : "files"], "file-missing")]);
+  const said = found.map((file) => ({
+    name: file.originalname,
+    sizeBytes: file.size,
+    sha256: toStore ? file.filename : createHash("sha256").update(file.buffer).digest("hex"),
+  }));
   request.body = {
     ...request.body,
-    file: { name: file.originalname, sizeBytes: file.size, sha256 },
+    ...(atMost === undefined ? { file: said[0] } : { files: said }),
   };
-  return staged;
+  return toStore
+    ? found.map(({ path, size, filename }) => ({ path, sizeBytes: size, sha256: filename }))
+    : [];
+}
+
+function filesOf({ file, files }: Request): Express.Multer.File[] {
+  if (file) return [file];
+  return Array.isArray(files) ? files : [];
 }

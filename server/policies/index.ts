@@ -130,12 +130,16 @@ export const fitPolicy = policy<AtSite>()({
     actor.supervises(`${f}.worker_id`, today),
     actor.owns(`${f}.worker_id`),
   ],
+  can: { change: officerAt, test: officerAt, issue: officerAt },
+});
+
+/** What was handed out: the worker says for themselves that they have it. */
+export const issuePolicy = policy<OfWorker>()({
+  sees: fitPolicy.sees,
   can: {
-    change: officerAt,
-    test: officerAt,
-    issue: officerAt,
     end: officerAt,
-    acknowledge: officerAt,
+    acknowledge: (actor, { siteId, workerId }) =>
+      actor.isAt(siteId, "officer") || (actor.is("worker") && actor.workerId === workerId),
   },
 });
 
@@ -252,8 +256,12 @@ export const may = {
   reportProblem: (actor: Actor) => actor.is("worker"),
   administer: (actor: Actor) => actor.is("administrator"),
   issueCodes: (actor: Actor) => actor.is("officer", "administrator"),
+  readWearing: (actor: Actor) => actor.is("officer", "supervisor", "auditor"),
   /** Rounds through the shop: an officer, or a supervisor among the own crews. */
   observe: (actor: Actor) => actor.is("officer", "supervisor"),
+  /** Fits and issues as the office sees them. */
+  readFitting: (actor: Actor) => actor.is("officer", "auditor"),
+  acknowledge: (actor: Actor) => actor.is("officer", "worker"),
   readTrail: (actor: Actor) => actor.is("auditor", "administrator"),
   readSites: (actor: Actor) => actor.is("officer", "auditor", "administrator", "supervisor"),
 };

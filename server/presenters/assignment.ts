@@ -13,6 +13,8 @@ export function presentAssignment(row: AssignmentRow): AssignmentView {
     innerName: row.innerName,
     outerModelId: row.outerModelId,
     outerName: row.outerName,
+    size: row.size,
+    audioDb: row.audioDb,
     fromDate: row.fromDate,
     toDate: row.toDate,
     revision: row.revision,

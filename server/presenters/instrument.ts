@@ -12,6 +12,7 @@ export function presentInstrument(actor: Actor, row: InstrumentRow): InstrumentV
     serialNumber: row.serialNumber,
     name: row.name,
     calibrationDueOn: row.calibrationDueOn,
+    calibrationFailedOn: row.calibrationFailedOn,
     presets: row.presets,
     isArchived: row.isArchived,
     revision: row.revision,

@@ -31,6 +31,7 @@ export function presentSite(actor: Actor, row: SiteRow): SiteView {
     language: row.language,
     noticeDelayMin: row.noticeDelayMin,
     revision: row.revision,
+    fitPolicy: row.fitPolicy,
     settings: presentSettings(settings),
     settingsHistory: row.history.map((version) => ({
       ...presentSettings(version),

@@ -16,6 +16,7 @@ export async function listAssignments(
        CASE WHEN a.task_id IS NOT NULL THEN 'task' WHEN a.area_id IS NOT NULL THEN 'area' ELSE 'everywhere' END AS use,
        a.task_id AS "taskId", a.area_id AS "areaId", coalesce(t.name, r.name) AS "useName",
        a.inner_model_id AS "innerModelId", i.name AS "innerName", a.outer_model_id AS "outerModelId", o.name AS "outerName",
+       a.size, a.audio_db AS "audioDb",
        lower(a.valid)::text AS "fromDate", (upper(a.valid) - 1)::text AS "toDate", a.revision
      FROM assignments a JOIN protector_models i ON i.id = a.inner_model_id LEFT JOIN protector_models o ON o.id = a.outer_model_id
      LEFT JOIN tasks t ON t.id = a.task_id LEFT JOIN areas r ON r.id = a.area_id

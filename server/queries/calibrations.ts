@@ -8,6 +8,12 @@ import { rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
 import { runPolicy } from "../policies";
 
+/** SQL: the day of a calibration that an instrument failed and that none has followed, as text; null: none. */
+export const FAILED_ON = (
+  instrumentId: string,
+) => `(SELECT CASE WHEN NOT c.has_passed THEN c.done_on::text END
+  FROM instrument_calibrations c WHERE c.instrument_id = ${instrumentId} ORDER BY c.done_on DESC, c.created_at DESC LIMIT 1)`;
+
 /** What the laboratory had said of these instruments last, each on its date. In the order asked for. */
 export async function calibrationsOn(
   wanted: readonly { instrumentId: string; date: string }[],

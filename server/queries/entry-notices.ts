@@ -1,5 +1,5 @@
 import type { EntryNotices, NoticeRow } from "../../shared/schemas/notice";
-import { rows } from "../lib/db";
+import { row, rows } from "../lib/db";
 
 interface Found extends Omit<NoticeRow, "notBefore" | "sentAt"> {
   notBefore: Date;
@@ -29,13 +29,22 @@ export async function findNotices(
 }
 
 export async function entryNotices(entryId: string): Promise<EntryNotices> {
-  return summarize(
+  const notices = await findNotices("n.entry_id = :entryId AND n.state <> 'withdrawn'", {
     entryId,
-    await findNotices("n.entry_id = :entryId AND n.state <> 'withdrawn'", { entryId }),
+  });
+  const correction = await row<{ at: Date | null }>(
+    `SELECT max(coalesce(later.sent_at, later.attempted_at)) AS at FROM notices n JOIN notices later ON later.replaces_id = n.id
+     WHERE n.entry_id = :entryId AND later.state IN ('sent', 'possibly-sent')`,
+    { entryId },
   );
+  return summarize(entryId, notices, correction?.at ?? null);
 }
 
-export function summarize(entryId: string, notices: NoticeRow[]): EntryNotices {
+export function summarize(
+  entryId: string,
+  notices: NoticeRow[],
+  correctedAt: Date | null = null,
+): EntryNotices {
   const states = new Set(notices.map(({ state }) => state));
   const state =
     notices.length === 0
@@ -56,5 +65,6 @@ export function summarize(entryId: string, notices: NoticeRow[]): EntryNotices {
       null,
     people: new Set(notices.map(({ recipientName }) => recipientName)).size,
     notices,
+    correctedAt: correctedAt?.toISOString() ?? null,
   };
 }

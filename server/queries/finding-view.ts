@@ -1,10 +1,12 @@
 import type { z } from "zod";
+import { isNotified, NEWS_FOR_DAYS } from "../../shared/findings/notified";
 import type {
   FindingFilter,
   FindingPage,
   FindingRow,
   FindingView,
 } from "../../shared/schemas/finding";
+import { addDays, localDate } from "../../shared/time/zone";
 import { decodeCursor, pageFrom } from "../lib/cursor";
 import { rows } from "../lib/db";
 import { type Actor, abilities, visible } from "../lib/policy";
@@ -142,5 +144,14 @@ export async function findingView(
       worker: { id: ofWorkerId, name: ofWorkerName },
     })),
     told: told.map(({ at, ...one }) => ({ ...one, at: at?.toISOString() ?? null })),
+    untold: told.length > 0 ? null : whyUntold(finding),
   };
+}
+
+/** Why no notice tells of a finding. */
+function whyUntold(finding: Finding): NonNullable<FindingView["untold"]> {
+  if (!isNotified(finding)) return "not-by-mail";
+  if (finding.daysCount === 0) return "corrected";
+  const oldest = addDays(localDate(finding.openedAt, "UTC"), -NEWS_FOR_DAYS);
+  return finding.lastDate < oldest ? "long-ago" : "no-address";
 }

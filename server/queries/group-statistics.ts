@@ -1,3 +1,5 @@
+import { isDeepStrictEqual } from "node:util";
+import { lawOf } from "../../shared/acoustics/exchange-law";
 import {
   describeGroup,
   type GroupSample,
@@ -5,7 +7,7 @@ import {
   probabilityPlot,
   workerOutliers,
 } from "../../shared/acoustics/group-statistics";
-import { outsideCriterion } from "../../shared/acoustics/outside-criterion";
+import { isSameFigure, outsideCriterion } from "../../shared/acoustics/outside-criterion";
 import type { Criterion, RuleSetVersion, TaskLevel } from "../../shared/acoustics/types";
 import {
   budgetOfGroup,
@@ -13,7 +15,12 @@ import {
   whatNarrowsMost,
 } from "../../shared/acoustics/uncertainty";
 import { levelOf, ruleSetInForce } from "../../shared/rule-sets";
-import type { GroupBudgetView, GroupStatistics, GroupView } from "../../shared/schemas/group";
+import type {
+  GroupBlock,
+  GroupBudgetView,
+  GroupStatistics,
+  GroupView,
+} from "../../shared/schemas/group";
 import type { ObservedDuration, SurveySample } from "../../shared/schemas/survey";
 import { rows } from "../lib/db";
 import { only } from "../lib/only";
@@ -35,40 +42,72 @@ interface Sample extends GroupSample {
   workerName: string | null;
 }
 
-/** Days measured on the group's workers themselves, as they are judged. */
-async function measuredDays(actor: Actor, jobId: string) {
-  return rows<{ workerId: string; workerName: string | null; levelDb: number; bound: string }>(
+/** Days measured on the group's workers themselves, as each of these criteria judged them. */
+async function measuredDays(
+  actor: Actor,
+  jobId: string,
+  ruleSet: RuleSetVersion,
+  criteria: readonly Criterion[],
+) {
+  return rows<{
+    workerId: string;
+    workerName: string | null;
+    criterionId: string;
+    levelDb: number | null;
+    dosePct: number | null;
+    bound: string;
+  }>(
     `SELECT d.worker_id AS "workerId", CASE WHEN ${visible(workerPolicy, actor, "w")} THEN w.name END AS "workerName",
-       r.outside_db AS "levelDb", r.outside_bound AS bound
+       c."criterionId", c."levelDb", c."dosePct", c.bound
      FROM workers w JOIN days d ON d.worker_id = w.id JOIN day_results r ON r.id = d.current_result_id
-     WHERE w.job_id = :jobId AND r.grade = 'measured-worker' AND r.outside_db IS NOT NULL
+     CROSS JOIN LATERAL jsonb_to_recordset((r.criteria->'governing') || coalesce(r.criteria->'comparison', '[]'))
+       AS c("ruleSetKey" text, "criterionId" text, "levelDb" float8, "dosePct" float8, bound text)
+     WHERE w.job_id = :jobId AND r.grade = 'measured-worker' AND c."ruleSetKey" = :ruleSetKey AND c."criterionId" IN (:criteria)
        AND d.date > current_date - make_interval(months => ${MONTHS})
      ORDER BY d.date, d.worker_id`,
-    { jobId },
+    { jobId, ruleSetKey: ruleSet.key, criteria: criteria.map(({ id }) => id) },
   );
 }
 
-/** What the rules at the group's site judge a day without protection by: each action value and limit once. */
-function thresholds(
-  ruleSet: RuleSetVersion,
-  { quantity, exchangeRateDb, thresholdDb, judged }: Criterion,
-) {
-  const isSame = (one: Criterion) =>
-    one.judged === judged &&
-    one.quantity === quantity &&
-    one.exchangeRateDb === exchangeRateDb &&
-    one.thresholdDb === thresholdDb;
-  const levels = ruleSet.criteria
-    .filter((one) => (one.kind === "action" || one.kind === "limit") && isSame(one))
-    .map((one) => ({ levelDb: levelOf(one), label: one.label }));
+/** Criteria that judge a day without protection by one figure each: action values and limits of one law together. */
+function figuresOf(ruleSet: RuleSetVersion): { criterion: Criterion; all: Criterion[] }[] {
+  const first = outsideCriterion(ruleSet);
+  const judged = ruleSet.criteria.filter(
+    ({ kind, quantity, judged: how }) =>
+      (kind === "action" || kind === "limit") &&
+      (quantity === "lex-8h" || quantity === "dose" || quantity === "table-dose") &&
+      how === first.judged,
+  );
+  const figures: { criterion: Criterion; all: Criterion[] }[] = [];
+  for (const criterion of judged) {
+    const known = figures.find((figure) => isSameFigure(figure.criterion, criterion));
+    if (known) known.all.push(criterion);
+    else figures.push({ criterion, all: [criterion] });
+  }
+  return figures;
+}
+
+/** Each level that these criteria set, once. */
+function thresholds(criteria: readonly Criterion[]) {
+  const levels = criteria.map((one) => ({ levelDb: levelOf(one), label: one.label }));
   return levels.filter(
     ({ levelDb }, index) => levels.findIndex((other) => other.levelDb === levelDb) === index,
   );
 }
 
+type Figure = Pick<GroupBlock, "quantity" | "exchangeRateDb" | "thresholdDb">;
+const LEX: Figure = { quantity: "lex-8h", exchangeRateDb: null, thresholdDb: null };
+
+function figureOf(criterion: Criterion): Figure {
+  if (criterion.quantity !== "dose" && criterion.quantity !== "table-dose") return LEX;
+  const { exchangeRateDb, thresholdDb } = lawOf(criterion);
+  return { quantity: criterion.quantity, exchangeRateDb, thresholdDb };
+}
+
 function describe(
   samples: readonly Sample[],
   levels: readonly { levelDb: number; label: string }[],
+  isEnergy: boolean,
 ): GroupStatistics | null {
   if (samples.length === 0) return null;
   const nameOf = new Map(samples.map(({ workerId, workerName }) => [workerId, workerName]));
@@ -79,6 +118,7 @@ function describe(
   const { exceedances, reasons, ...figures } = describeGroup(
     samples,
     levels.map(({ levelDb }) => levelDb),
+    isEnergy,
   );
   const outliers = workerOutliers(samples);
   const {
@@ -122,6 +162,7 @@ interface Part {
   strategy: GroupSurvey["strategy"];
   isEnergy: boolean;
   keptReasons: readonly string[];
+  belowRangeCount: number;
 }
 
 /** The budget of a nominal day out of what is known of each of its tasks, or why there is none. */
@@ -178,6 +219,9 @@ function budgetOf(
   };
 }
 
+const belowRangeOf = (parts: readonly Part[]) =>
+  parts.reduce((sum, { belowRangeCount }) => sum + belowRangeCount, 0);
+
 const keptOf = (parts: readonly Part[]) => [
   ...new Set(parts.flatMap(({ keptReasons }) => keptReasons)),
 ];
@@ -194,6 +238,7 @@ function partsInForce(day: readonly NominalTask[], levels: readonly LevelOfTask[
       strategy: level?.strategy ?? "task",
       isEnergy: level ? level.metric.kind !== "lavg" : true,
       keptReasons: level?.keptReasons ?? [],
+      belowRangeCount: 0,
     };
   });
 }
@@ -204,15 +249,19 @@ function partsOfSurvey(
   samples: readonly SurveySample[],
   inForce: readonly Part[],
 ): Part[] {
-  const results = targets.map((target) => ({
-    target,
-    result: resultOf(strategy, target, samples, groupSize),
-    samplesDb: samples
-      .filter(({ position, notCounted }) => position === target.position && notCounted === null)
-      .map(({ laeqDb }) => laeqDb!),
-  }));
+  const results = targets.map((target) => {
+    const counted = samples.filter(
+      ({ position, notCounted }) => position === target.position && notCounted === null,
+    );
+    return {
+      target,
+      result: resultOf(strategy, target, samples, groupSize),
+      samplesDb: counted.map(({ laeqDb }) => laeqDb!),
+      belowRangeCount: counted.filter(isUnderRange).length,
+    };
+  });
   const partOf = (
-    { target, result, samplesDb }: (typeof results)[number],
+    { target, result, samplesDb, belowRangeCount }: (typeof results)[number],
     taskId: string,
   ): Part => ({
     taskId,
@@ -222,6 +271,7 @@ function partsOfSurvey(
     strategy,
     isEnergy: true,
     keptReasons: result.keptReasons,
+    belowRangeCount,
   });
   if (strategy !== "task") return results.map((one) => partOf(one, ""));
   const ofTask = new Map(results.map((one) => [one.target.taskId, one]));
@@ -249,7 +299,7 @@ export async function groupView(
   );
   const ruleSet = ruleSetInForce(head.governing, head.today);
   if (!ruleSet) throw new Error(`rule set ${head.governing} is not in force`);
-  const criterion = outsideCriterion(ruleSet);
+  const figures = figuresOf(ruleSet);
   const day = await nominalDay(job.id);
   const observed = await observedDurations(job.id);
   const levels = await levelsInForce(
@@ -268,11 +318,17 @@ export async function groupView(
   const whole = surveys.filter(({ strategy }) => strategy !== "task");
   const basisSurvey = whole.find(({ id }) => id === surveyId) ?? null;
   const basis = basisSurvey
-    ? fromSurvey(basisSurvey, samplesOf.get(basisSurvey.id) ?? [])
-    : fromDays(await measuredDays(actor, job.id));
-  const samples = basisSurvey ? await seenNames(actor, basis.samples) : basis.samples;
-  // A survey's samples are energy levels: against a dose by another exchange rate they say nothing.
-  const isComparable = !basisSurvey || criterion.quantity === "lex-8h";
+    ? await fromSurvey(actor, basisSurvey, samplesOf.get(basisSurvey.id) ?? [], figures)
+    : fromDays(
+        await measuredDays(
+          actor,
+          job.id,
+          ruleSet,
+          figures.map(({ criterion }) => criterion),
+        ),
+        figures,
+      );
+  const ofInForce = budgetOf(inForce, observed);
   return {
     jobId: job.id,
     jobName: job.name,
@@ -280,7 +336,6 @@ export async function groupView(
     siteName: head.siteName,
     workersCount: head.workersCount,
     ruleSetTitle: ruleSet.title,
-    quantity: basisSurvey ? "lex-8h" : criterion.quantity,
     nominalDay: day.map(({ areaId: _, ...task }) => ({
       ...task,
       levelDb: levelOfTask.get(task.taskId) ?? null,
@@ -290,8 +345,10 @@ export async function groupView(
       {
         surveyId: null,
         surveyName: null,
-        ...budgetOf(inForce, observed),
+        ...ofInForce,
         keptReasons: keptOf(inForce),
+        belowRangeCount: belowRangeOf(inForce),
+        isAsInForce: false,
       },
       ...surveys.map((survey) => {
         const parts = partsOfSurvey(survey, samplesOf.get(survey.id) ?? [], inForce);
@@ -303,6 +360,8 @@ export async function groupView(
           reason,
           lackingTaskIds: lackingTaskIds.filter((id) => id !== ""),
           keptReasons: keptOf(parts),
+          belowRangeCount: belowRangeOf(parts),
+          isAsInForce: budget !== null && isDeepStrictEqual(budget, ofInForce.budget),
         };
       }),
     ],
@@ -313,36 +372,77 @@ export async function groupView(
       leftOutCount: basis.leftOutCount,
       keptReasons: basis.keptReasons,
     },
-    statistics: describe(samples, isComparable ? thresholds(ruleSet, criterion) : []),
+    isOtherQuantity: basis.isOtherQuantity,
+    blocks: basis.blocks,
   };
 }
 
-function fromDays(days: Awaited<ReturnType<typeof measuredDays>>) {
-  const known = days.filter(({ bound }) => bound !== "lower");
-  return {
-    samples: known.map(
-      ({ bound, ...sample }): Sample => ({ ...sample, isBelow: bound === "upper" }),
-    ),
-    leftOutCount: days.length - known.length,
-    keptReasons: [] as string[],
-  };
+interface Basis {
+  leftOutCount: number;
+  keptReasons: string[];
+  isOtherQuantity: boolean;
+  blocks: GroupBlock[];
 }
+
+/** Days by each figure that the rules judge them by. A day without a dose stayed below that dose's threshold. */
+function fromDays(
+  days: Awaited<ReturnType<typeof measuredDays>>,
+  figures: ReturnType<typeof figuresOf>,
+): Basis {
+  const blocks = figures.map(({ criterion, all }): GroupBlock => {
+    const figure = figureOf(criterion);
+    const own = days.filter(({ criterionId }) => criterionId === criterion.id);
+    const samples = own.flatMap(({ workerId, workerName, levelDb, dosePct, bound }): Sample[] => {
+      if (bound === "lower") return [];
+      if (levelDb !== null) return [{ workerId, workerName, levelDb, isBelow: bound === "upper" }];
+      return dosePct === 0 && figure.thresholdDb !== null
+        ? [{ workerId, workerName, levelDb: figure.thresholdDb, isBelow: true }]
+        : [];
+    });
+    return {
+      ...figure,
+      leftOutCount: own.filter(({ bound }) => bound === "lower").length,
+      statistics: describe(samples, thresholds(all), figure.quantity === "lex-8h"),
+    };
+  });
+  return { leftOutCount: 0, keptReasons: [], isOtherQuantity: false, blocks };
+}
+
+const isUnderRange = ({ doubts }: SurveySample) => doubts.includes("under-range");
 
 /** Samples of a job or of full days as 8-hour levels, over the nominal day. Under range: below what was read. */
-function fromSurvey({ nominal }: MeasuredSurvey, samples: readonly SurveySample[]) {
-  const counted = samples.filter(({ notCounted }) => notCounted === null);
+async function fromSurvey(
+  actor: Actor,
+  { nominal }: MeasuredSurvey,
+  all: readonly SurveySample[],
+  figures: ReturnType<typeof figuresOf>,
+): Promise<Basis> {
+  const counted = all.filter(({ notCounted }) => notCounted === null);
   const toLexDb = 10 * Math.log10(shiftMinOf(nominal) / REFERENCE_MIN);
-  return {
-    samples: counted.map(
-      ({ workerId, workerName, laeqDb, doubts }): Sample => ({
-        workerId,
-        workerName,
-        levelDb: laeqDb! + toLexDb,
-        isBelow: doubts.includes("under-range"),
+  const samples = await seenNames(
+    actor,
+    counted.map(
+      (sample): Sample => ({
+        workerId: sample.workerId,
+        workerName: sample.workerName,
+        levelDb: sample.laeqDb! + toLexDb,
+        isBelow: isUnderRange(sample),
       }),
     ),
-    leftOutCount: samples.length - counted.length,
+  );
+  // Energy levels: against a dose by another exchange rate they say nothing.
+  const energy = figures.find(({ criterion }) => criterion.quantity === "lex-8h");
+  return {
+    leftOutCount: all.length - counted.length,
     keptReasons: [...new Set(counted.flatMap(({ keptReason }) => keptReason ?? []))],
+    isOtherQuantity: energy === undefined,
+    blocks: [
+      {
+        ...LEX,
+        leftOutCount: 0,
+        statistics: describe(samples, energy ? thresholds(energy.all) : [], true),
+      },
+    ],
   };
 }
 

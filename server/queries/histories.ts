@@ -5,11 +5,13 @@ import {
   distribution,
   envelope as envelopeOf,
   evaluateHistory,
+  type HistoryEvaluation,
   MISSING,
   type PartEvaluation,
   percentiles,
   runningDose,
   type Stretch,
+  type StretchEvaluation,
 } from "../../shared/acoustics/history";
 import type {
   Envelope,
@@ -59,6 +61,7 @@ export async function historyView(actor: Actor, id: string): Promise<HistoryView
       `SELECT h.id, h.site_id AS "siteId", s.time_zone AS "timeZone", h.run_id AS "runId", r.worker_id AS "workerId", w.name AS "workerName", r.date::text AS date,
          i.name AS "instrumentName", i.serial_number AS "serialNumber", h.file_id AS "fileId", f.name AS "fileName", ${isoInstant("h.starts_at")} AS "startsAt",
          h.interval_ms AS "intervalMs", h.values_count AS "valuesCount", h.channels, v.stretches, rv.kept_reason AS "keptReason", h.is_void AS "isVoid", h.revision,
+         u.name AS "authorName", ${isoInstant("v.created_at")} AS "savedAt",
          coalesce((SELECT json_object_agg(t.id, t.name) FROM tasks t
            WHERE t.id IN (SELECT (x->>'taskId')::uuid FROM jsonb_array_elements(v.stretches) x WHERE x ? 'taskId')), '{}') AS "taskNames",
          coalesce((SELECT json_agg(json_build_object('id', k.task_id, 'name', t.name, 'durationMin', k.duration_min) ORDER BY k.shift_starts, k.position)
@@ -68,7 +71,7 @@ export async function historyView(actor: Actor, id: string): Promise<HistoryView
            JOIN tasks t ON t.id = k.task_id), '[]') AS tasks
        FROM time_histories h JOIN time_history_revisions v ON v.id = h.current_revision_id JOIN sites s ON s.id = h.site_id JOIN runs r ON r.id = h.run_id
        JOIN run_revisions rv ON rv.id = r.current_revision_id JOIN instruments i ON i.id = h.instrument_id JOIN files f ON f.id = h.file_id
-       LEFT JOIN workers w ON w.id = r.worker_id WHERE h.id = :id`,
+       LEFT JOIN workers w ON w.id = r.worker_id LEFT JOIN users u ON u.id = v.author_id WHERE h.id = :id`,
       { id },
     ),
   );
@@ -174,7 +177,8 @@ const isEnergy = ({ exchangeRateDb, thresholdDb }: LabelledSettings["settings"])
 /** What a history comes to: with its stretches left out and with everything counted, by task, and as it grew. */
 export async function historyAnalysis(id: string): Promise<HistoryAnalysis> {
   const facts = await historyFacts(id);
-  const { labelled, settings, levels, parts, evaluation } = await evaluateStored(facts);
+  const stored = await evaluateStored(facts);
+  const { labelled, settings, levels, parts, evaluation } = stored;
   const intervalS = facts.intervalMs / 1000;
   // Percentiles and the distribution are of the A-weighted level as the ear follows it, or of its mean.
   const heard =
@@ -218,6 +222,7 @@ export async function historyAnalysis(id: string): Promise<HistoryAnalysis> {
     counted: summary(evaluation.counted, mask),
     everything: summary(evaluation.everything, everything),
     tasks: await byTask(facts.stretches, evaluation),
+    rest: restOf(stored, facts),
     distribution: distribution(heard.levels, mask).map(({ fromDb, sharePct }) => ({
       fromDb,
       sharePct,
@@ -281,34 +286,21 @@ function clockQuarters({
   return quarters;
 }
 
-/** Brackets of one task together: energies add over their time, doses by themselves. */
-async function byTask(
-  stretches: readonly HistoryStretch[],
-  evaluation: ReturnType<typeof evaluateHistory>,
-): Promise<HistoryAnalysis["tasks"]> {
-  const found = new Map<
-    string,
-    {
-      durationS: number;
-      energy: number | null;
-      laeqS: number;
-      dosePct: number | null;
-      sharePct: number | null;
-    }
-  >();
-  stretches.forEach((stretch, index) => {
-    if (stretch.kind !== "task") return;
-    const part = evaluation.stretches[index]!;
-    const known = found.get(stretch.taskId) ?? {
-      durationS: 0,
-      energy: 0,
-      laeqS: 0,
-      dosePct: 0,
-      sharePct: 0,
-    };
+interface TaskSum {
+  durationS: number;
+  energy: number | null;
+  laeqS: number;
+  dosePct: number | null;
+  sharePct: number | null;
+}
+
+/** Parts of one task together: energies add over their time, doses by themselves. What one part lacks the sum lacks. */
+function sumOf(parts: readonly StretchEvaluation[]): TaskSum {
+  const nothing: TaskSum = { durationS: 0, energy: 0, laeqS: 0, dosePct: 0, sharePct: 0 };
+  return parts.reduce((known, part): TaskSum => {
     const laeq = part.laeq?.bound === "exact" ? part.laeq : null;
     const dose = part.doses[0] ?? null;
-    found.set(stretch.taskId, {
+    return {
       durationS: known.durationS + part.durationS,
       energy:
         known.energy === null || !laeq
@@ -320,7 +312,36 @@ async function byTask(
         known.sharePct === null || part.energySharePct === null
           ? null
           : known.sharePct + part.energySharePct,
-    });
+    };
+  }, nothing);
+}
+
+/** A sum as it is shown; its share is that in the dose, else in the energy. */
+function figuresOf(
+  { durationS, energy, laeqS, dosePct, sharePct }: TaskSum,
+  wholeDose: number | null,
+): HistoryAnalysis["rest"] & object {
+  return {
+    durationS,
+    laeqDb: energy !== null && energy > 0 && laeqS > 0 ? 10 * Math.log10(energy / laeqS) : null,
+    dosePct,
+    sharePct:
+      dosePct !== null && wholeDose !== null && wholeDose > 0
+        ? (100 * dosePct) / wholeDose
+        : sharePct,
+  };
+}
+
+const wholeDoseOf = ({ counted }: HistoryEvaluation) => counted.doses[0]?.dosePct ?? null;
+
+async function byTask(
+  stretches: readonly HistoryStretch[],
+  evaluation: HistoryEvaluation,
+): Promise<HistoryAnalysis["tasks"]> {
+  const found = new Map<string, StretchEvaluation[]>();
+  stretches.forEach((stretch, index) => {
+    if (stretch.kind !== "task") return;
+    found.set(stretch.taskId, [...(found.get(stretch.taskId) ?? []), evaluation.stretches[index]!]);
   });
   const ids = [...found.keys()];
   const names =
@@ -331,16 +352,42 @@ async function byTask(
           [ids],
         );
   const nameOf = new Map(names.map(({ id, name }) => [id, name]));
-  const wholeDose = evaluation.counted.doses[0]?.dosePct ?? null;
-  return [...found].map(([taskId, { durationS, energy, laeqS, dosePct, sharePct }]) => ({
+  return [...found].map(([taskId, parts]) => ({
     taskId,
     taskName: nameOf.get(taskId) ?? "",
-    durationS,
-    laeqDb: energy !== null && energy > 0 && laeqS > 0 ? 10 * Math.log10(energy / laeqS) : null,
-    dosePct,
-    sharePct:
-      dosePct !== null && wholeDose !== null && wholeDose > 0
-        ? (100 * dosePct) / wholeDose
-        : sharePct,
+    ...figuresOf(sumOf(parts), wholeDoseOf(evaluation)),
   }));
+}
+
+/** The parts of a history that lie under no task's bracket. */
+function gapsBetween(parts: readonly Stretch[], valuesCount: number): Stretch[] {
+  const tasks = parts
+    .filter(({ kind }) => kind === "task")
+    .toSorted((a, b) => a.fromIndex - b.fromIndex);
+  const gaps: Stretch[] = [];
+  let fromIndex = 0;
+  for (const end of [...tasks, { fromIndex: valuesCount, toIndex: valuesCount }]) {
+    if (end.fromIndex > fromIndex)
+      gaps.push({ id: `gap ${gaps.length}`, kind: "task", fromIndex, toIndex: end.fromIndex });
+    fromIndex = Math.max(fromIndex, end.toIndex);
+  }
+  return gaps;
+}
+
+/** What counts and lies under no bracket; null where no bracket is drawn, or nothing is left. */
+function restOf(
+  { levels, parts, settings, evaluation }: Awaited<ReturnType<typeof evaluateStored>>,
+  { intervalMs, valuesCount }: HistoryFacts,
+): HistoryAnalysis["rest"] {
+  const gaps = gapsBetween(parts, valuesCount);
+  if (gaps.length === 0 || !parts.some(({ kind }) => kind === "task")) return null;
+  const leftOut = parts.filter(({ kind }) => kind === "left-out");
+  const { stretches } = evaluateHistory(
+    levels,
+    intervalMs / 1000,
+    [...gaps, ...leftOut],
+    settings.slice(0, 1),
+  );
+  const sum = sumOf(stretches.slice(0, gaps.length).filter(({ durationS }) => durationS > 0));
+  return sum.durationS === 0 ? null : figuresOf(sum, wholeDoseOf(evaluation));
 }

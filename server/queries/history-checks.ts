@@ -2,6 +2,7 @@ import type { HistoryIssue, HistoryReport } from "../../shared/schemas/history";
 import { localDate } from "../../shared/time/zone";
 import { rows } from "../lib/db";
 import { isoInstant } from "../lib/sql-instant";
+import { facedShift } from "./faced-shifts";
 
 export interface ImportedFor {
   instrumentId: string;
@@ -69,14 +70,29 @@ export async function checkAgainstRecords(
     for (const { id, from, to } of runs)
       issues.push(told("refused", "overlaps-run", { runId: id, from, to }));
   }
-  if (workerId !== null) issues.push(...(await checkShifts(workerId, startsAt, endsAt)));
+  if (workerId !== null) issues.push(...(await checkShifts(workerId, startsAt, endsAt, timeZone)));
   return issues;
+}
+
+/** Wholly beside the shift that the worker had on that day, or usually has. */
+async function checkOutside(
+  workerId: string,
+  startsAt: string,
+  endsAt: string,
+  timeZone: string,
+): Promise<HistoryIssue[]> {
+  const date = localDate(new Date(startsAt), timeZone);
+  const shift = await facedShift({ workerId, date, span: { from: startsAt, to: endsAt } });
+  return shift?.insideMin === 0
+    ? [told("asked", "outside-shift", { from: shift.from, to: shift.to })]
+    : [];
 }
 
 async function checkShifts(
   workerId: string,
   startsAt: string,
   endsAt: string,
+  timeZone: string,
 ): Promise<HistoryIssue[]> {
   const shifts = await rows<{ startsAt: string; endsAt: string }>(
     `SELECT ${isoInstant("starts_at")} AS "startsAt", ${isoInstant("ends_at")} AS "endsAt" FROM shifts
@@ -85,7 +101,7 @@ async function checkShifts(
   );
   const [first] = shifts;
   const last = shifts.at(-1);
-  if (!first || !last) return [];
+  if (!first || !last) return checkOutside(workerId, startsAt, endsAt, timeZone);
   if (shifts.length > 1) return [told("asked", "spans-shifts", { count: shifts.length })];
   const beforeMin = (Date.parse(first.startsAt) - Date.parse(startsAt)) / 60_000;
   const afterMin = (Date.parse(endsAt) - Date.parse(last.endsAt)) / 60_000;

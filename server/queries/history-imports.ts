@@ -3,15 +3,18 @@ import type {
   HistoryImportFilter,
   HistoryImportPage,
   HistoryImportView,
+  HistoryReport,
 } from "../../shared/schemas/history";
+import { localDate } from "../../shared/time/zone";
 import { decodeCursor, pageFrom } from "../lib/cursor";
-import { rows } from "../lib/db";
+import { row, rows } from "../lib/db";
 import { only } from "../lib/only";
 import { type Actor, abilities, visible } from "../lib/policy";
 import { isoInstant } from "../lib/sql-instant";
 import { historyPolicy } from "../policies";
+import { type FacingRun, facedShift } from "./faced-shifts";
 
-type Found = Omit<HistoryImportView, "can" | "head" | "report">;
+type Found = z.infer<typeof HistoryImportPage>["rows"][number];
 
 const FACTS = `m.id, m.site_id AS "siteId", s.time_zone AS "timeZone", m.instrument_id AS "instrumentId", i.name AS "instrumentName",
     i.serial_number AS "serialNumber", m.run_id AS "runId", coalesce(m.worker_id, r.worker_id) AS "workerId", w.name AS "workerName",
@@ -22,12 +25,54 @@ const TABLES = `history_imports m JOIN sites s ON s.id = m.site_id JOIN instrume
 
 export async function historyImportView(actor: Actor, id: string): Promise<HistoryImportView> {
   const found = only(
-    await rows<Omit<HistoryImportView, "can">>(
+    await rows<Omit<HistoryImportView, "can" | "shift">>(
       `SELECT ${FACTS}, m.head, m.report FROM ${TABLES} WHERE m.id = :id`,
       { id },
     ),
   );
-  return { ...found, can: abilities(historyPolicy, actor, found) };
+  const { report } = found;
+  const shift =
+    report === null || spanOf(report) === null
+      ? null
+      : await facedShift({ ...(await runOfImport(id, report)), span: spanOf(report) });
+  return { ...found, shift, can: abilities(historyPolicy, actor, found) };
+}
+
+export const spanOf = ({
+  startsAt,
+  endsAt,
+}: Pick<HistoryReport, "startsAt" | "endsAt">): { from: string; to: string } | null =>
+  startsAt === null || endsAt === null ? null : { from: startsAt, to: endsAt };
+
+export interface RunOfImport extends FacingRun {
+  instrumentId: string;
+  shiftId: string | null;
+}
+
+/**
+ * The run that an import belongs to, or the one that it becomes: of the worker's shift that the file lies in most, or
+ * else of the local day on which it begins.
+ */
+export async function runOfImport(
+  importId: string,
+  report: Pick<HistoryReport, "startsAt" | "endsAt">,
+): Promise<RunOfImport> {
+  const { timeZone, ...run } = only(
+    await rows<Omit<RunOfImport, "date"> & { date: string | null; timeZone: string }>(
+      `SELECT m.instrument_id AS "instrumentId", s.time_zone AS "timeZone", coalesce(r.worker_id, m.worker_id) AS "workerId", r.shift_id AS "shiftId",
+         r.date::text AS date FROM history_imports m JOIN sites s ON s.id = m.site_id LEFT JOIN runs r ON r.id = m.run_id WHERE m.id = :importId`,
+      { importId },
+    ),
+  );
+  if (run.date !== null) return { ...run, date: run.date };
+  const shift = await row<{ id: string; date: string }>(
+    `SELECT id, date::text AS date FROM shifts
+     WHERE worker_id = :workerId AND NOT is_void AND starts_at < CAST(:endsAt AS timestamptz) AND ends_at > CAST(:startsAt AS timestamptz)
+     ORDER BY least(ends_at, CAST(:endsAt AS timestamptz)) - greatest(starts_at, CAST(:startsAt AS timestamptz)) DESC LIMIT 1`,
+    { workerId: run.workerId, startsAt: report.startsAt, endsAt: report.endsAt },
+  );
+  const date = shift?.date ?? localDate(new Date(report.startsAt ?? 0), timeZone);
+  return { ...run, shiftId: shift?.id ?? null, date };
 }
 
 export async function listHistoryImports(

@@ -12,6 +12,7 @@ type Reasons<Code extends MeasuringReason["code"]> = Omit<
 
 interface NeedRow extends Omit<MeasuringNeed, "reasons"> {
   neverMeasured: string[];
+  neverMeasuredIds: string[];
   tooLongAgo: Reasons<"measured-too-long-ago"> | null;
   changes: Reasons<"changed-since">[];
   undecided: Reasons<"undecided"> | null;
@@ -33,7 +34,11 @@ function reasonsOf(found: NeedRow): MeasuringReason[] {
     ...change,
   }));
   if (found.neverMeasured.length > 0)
-    reasons.push({ code: "never-measured", taskNames: found.neverMeasured });
+    reasons.push({
+      code: "never-measured",
+      taskNames: found.neverMeasured,
+      taskIds: found.neverMeasuredIds,
+    });
   for (const one of found.doubtful) reasons.push({ code: "doubtful-instrument", ...one });
   if (found.undecided) reasons.push({ code: "undecided", ...found.undecided });
   if (found.tooLongAgo) reasons.push({ code: "measured-too-long-ago", ...found.tooLongAgo });
@@ -77,6 +82,7 @@ export async function measuringNeeds(actor: Actor, siteId: string | null): Promi
          WHERE x.task_id = t.id AND x.effective_from <= g.today ORDER BY x.effective_from DESC, x.number DESC LIMIT 1) l ON TRUE),
      of_tasks AS (
        SELECT job_id, array_agg(name ORDER BY name) FILTER (WHERE NOT is_measured) AS never,
+         array_agg(task_id ORDER BY name) FILTER (WHERE NOT is_measured) AS never_ids,
          min(effective_from) FILTER (WHERE is_measured) AS oldest, min(effective_from) AS earliest
        FROM levels GROUP BY job_id),
      -- What a change concerns: tasks of the group, and those of an area, with a level from before; or the job as a whole.
@@ -90,6 +96,7 @@ export async function measuringNeeds(actor: Actor, siteId: string | null): Promi
        GROUP BY g.id, c.id),
      changed AS (
        SELECT c.job_id, json_agg(json_build_object('changeId', c.id, 'kind', c.kind, 'what', c.what, 'happenedOn', c.happened_on::text,
+         'taskIds', coalesce(c.task_ids, '{}'),
          'assignmentsCount', (SELECT count(*)::int FROM assignments a JOIN workers w ON w.id = a.worker_id
             WHERE w.job_id = c.job_id AND a.valid @> current_date AND lower(a.valid) < c.happened_on
               AND (a.task_id = ANY (c.task_ids) OR a.area_id = ANY (c.area_ids) OR (a.task_id IS NULL AND a.area_id IS NULL))))
@@ -120,7 +127,7 @@ export async function measuringNeeds(actor: Actor, siteId: string | null): Promi
        FROM (SELECT job_id, instrument_id, serial_number, count(DISTINCT run_id)::int AS runs FROM doubtful_runs
              GROUP BY job_id, instrument_id, serial_number) x GROUP BY job_id)
      SELECT g.site_id AS "siteId", g.site_name AS "siteName", g.id AS "jobId", g.name AS "jobName", g.workers AS "workersCount",
-       coalesce(t.never, '{}') AS "neverMeasured",
+       coalesce(t.never, '{}') AS "neverMeasured", coalesce(t.never_ids, '{}') AS "neverMeasuredIds",
        CASE WHEN t.oldest + make_interval(months => g.months) <= g.today THEN json_build_object('measuredOn', t.oldest::text,
          'dueOn', (t.oldest + make_interval(months => g.months))::date::text) END AS "tooLongAgo",
        coalesce(c.list, '[]') AS changes,

@@ -1,3 +1,4 @@
+import type { Criterion, RuleSetVersion } from "../../shared/acoustics/types";
 import { ruleSetInForce } from "../../shared/rule-sets";
 import type { ReadingFacts } from "../../shared/schemas/evaluation";
 import { row } from "../lib/db";
@@ -30,9 +31,24 @@ const keyOf = ({ criterionLevelDb, exchangeRateDb, thresholdDb }: MeterSettings)
     ? `3 ${criterionLevelDb}`
     : `${criterionLevelDb} ${exchangeRateDb} ${thresholdDb}`;
 
+/** Of the noise outside: the limit, else the highest action value. The rest in the order of the rules. */
+function mainFirst({ criteria }: RuleSetVersion): Criterion[] {
+  const judged = criteria.filter(
+    ({ judged: how, quantity }) =>
+      how === "without-protection" && quantity !== "peak" && quantity !== "slow-maximum",
+  );
+  const levelDbOf = ({ levelDb, value }: Criterion) => levelDb ?? value;
+  const main =
+    judged.find(({ kind }) => kind === "limit") ??
+    judged
+      .filter(({ kind }) => kind === "action")
+      .toSorted((a, b) => levelDbOf(b) - levelDbOf(a))[0];
+  return main ? [main, ...criteria.filter((one) => one !== main)] : [...criteria];
+}
+
 /**
  * The settings of a site's criteria on a date, governing before comparison, and of an instrument's presets. The first
- * serves LAeq.
+ * is that of the governing rules' main value for noise without protection.
  */
 export async function settingsToEvaluate(
   siteId: string,
@@ -60,7 +76,7 @@ export async function settingsToEvaluate(
       if (label !== null && !known.labels.includes(label)) known.labels.push(label);
     } else byKey.set(keyOf(settings), { settings, labels: label === null ? [] : [label] });
   };
-  for (const { criteria } of ruleSets)
+  for (const ruleSet of ruleSets)
     for (const {
       label,
       quantity,
@@ -69,7 +85,7 @@ export async function settingsToEvaluate(
       thresholdDb,
       levelDb,
       value,
-    } of criteria) {
+    } of mainFirst(ruleSet)) {
       if (quantity === "peak" || quantity === "slow-maximum") continue;
       const isEnergy = quantity === "lex-8h" || quantity === "lex-weekly";
       const rate = isEnergy ? 3 : exchangeRateDb;

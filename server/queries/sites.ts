@@ -12,10 +12,15 @@ export type SiteRow = Omit<SiteView, "can" | "settings" | "settingsHistory"> & {
   history: SettingsRow[];
 };
 
+/** SQL: how sure a fit has to be at a site `s`, and when it is tested again. */
+export const FIT_POLICY = `json_build_object('confidencePct', s.fit_confidence_pct, 'everyMonths', s.fit_every_months,
+  'afterFailDays', s.fit_after_fail_days)`;
+
 /** Sites with all their settings, the latest first. */
 export async function listSites(actor: Actor, id: string | null = null): Promise<SiteRow[]> {
   const found = await rows<Omit<SiteRow, "history">>(
-    `SELECT s.id, s.name, s.time_zone AS "timeZone", s.language, s.notice_delay_min AS "noticeDelayMin", s.revision
+    `SELECT s.id, s.name, s.time_zone AS "timeZone", s.language, s.notice_delay_min AS "noticeDelayMin", s.revision,
+       ${FIT_POLICY} AS "fitPolicy"
      FROM sites s WHERE ${visible(sitePolicy, actor, "s")} AND (CAST(:id AS uuid) IS NULL OR s.id = :id)
      ORDER BY s.name`,
     { id },

@@ -12,6 +12,7 @@ import {
 import type { ObservedDuration, SurveyPlan, SurveyPlanQuery } from "../../shared/schemas/survey";
 import { rows } from "../lib/db";
 import type { Job } from "../models/task";
+import { FAILED_ON } from "./calibrations";
 import { observedDurations } from "./observed-durations";
 
 /** Of a working day whose nominal tasks nobody has named. */
@@ -42,7 +43,7 @@ export const shiftMinOf = (day: readonly { durationMin: number }[]): number =>
 async function instrumentsToReserve(siteId: string): Promise<SurveyPlan["instruments"]> {
   return rows(
     `SELECT i.id, i.name, i.serial_number AS "serialNumber", i.kind, i.class, i.calibration_due_on::text AS "calibrationDueOn",
-       coalesce((SELECT json_agg(json_build_object('surveyId', y.id, 'surveyName', y.name, 'fromDate', lower(v.valid)::text,
+       ${FAILED_ON("i.id")} AS "calibrationFailedOn", coalesce((SELECT json_agg(json_build_object('surveyId', y.id, 'surveyName', y.name, 'fromDate', lower(v.valid)::text,
            'toDate', (upper(v.valid) - 1)::text) ORDER BY lower(v.valid))
          FROM instrument_reservations v JOIN surveys y ON y.id = v.survey_id
          WHERE v.instrument_id = i.id AND upper(v.valid) > current_date AND y.state <> 'struck'), '[]') AS "reservedBy"
@@ -91,6 +92,9 @@ export async function planSurvey(
     taskName: null,
     samplesCount: plan.sampleCount,
     sampleMin: plan.sampleMin,
+    // Nobody has said yet how its noise runs: the form asks.
+    pattern: "steady" as const,
+    cycleMin: null,
     nominalMin: shiftMin,
     observed: null,
     reasons: [...plan.reasons],

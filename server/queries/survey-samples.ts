@@ -2,6 +2,7 @@ import { asLaw, levelFactor } from "../../shared/acoustics/exchange-law";
 import { energyMeanDb } from "../../shared/acoustics/exposure";
 import { evaluateHistory } from "../../shared/acoustics/history";
 import {
+  type NoisePattern,
   planFullDaySampling,
   planJobSampling,
   planTaskSampling,
@@ -29,6 +30,8 @@ export interface Target {
   taskName: string | null;
   samplesCount: number;
   sampleMin: number;
+  pattern: NoisePattern;
+  cycleMin: number | null;
   /** Nominal minutes of the task, or of the day. */
   nominalMin: number;
 }
@@ -261,15 +264,15 @@ function bandsOf(samples: readonly SurveySample[]): TargetResult["octaveBandsDb"
 
 function planOf(
   strategy: SurveyStrategy,
-  { nominalMin, samplesCount }: Target,
+  { nominalMin, samplesCount, pattern, cycleMin }: Target,
   samplesDb: readonly number[],
   groupSize: number,
 ): SamplingPlan {
   if (strategy === "task")
     return planTaskSampling({
       durationMin: nominalMin,
-      pattern: "steady",
-      cycleMin: null,
+      pattern,
+      cycleMin,
       samplesDb,
     });
   return strategy === "job"

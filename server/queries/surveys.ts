@@ -11,6 +11,7 @@ import { rows } from "../lib/db";
 import { only } from "../lib/only";
 import { type Actor, abilities, visible } from "../lib/policy";
 import { surveyPolicy, workerPolicy } from "../policies";
+import { FAILED_ON } from "./calibrations";
 import { nominalDay, shiftMinOf } from "./survey-plan";
 import { resultOf, type SurveyHead, samplesOfSurveys, type Target } from "./survey-samples";
 
@@ -67,7 +68,8 @@ export async function surveyHead(id: string): Promise<MeasuredSurvey> {
          y.from_date::text AS "fromDate", y.to_date::text AS "toDate", y.draw_seed AS "drawSeed", y.observers, y.risk_factors AS "riskFactors",
          y.closing_note AS "closingNote", u.name AS "authorName", y.created_at AS "createdAt", y.revision,
          (SELECT count(*)::int FROM workers w WHERE w.job_id = y.job_id AND (w.left_on IS NULL OR w.left_on >= current_date)) AS "groupSize",
-         (SELECT json_agg(json_build_object('taskId', t.task_id, 'samplesCount', t.samples_count, 'sampleMin', t.sample_min) ORDER BY t.position)
+         (SELECT json_agg(json_build_object('taskId', t.task_id, 'samplesCount', t.samples_count, 'sampleMin', t.sample_min,
+            'pattern', t.pattern, 'cycleMin', t.cycle_min) ORDER BY t.position)
           FROM survey_targets t WHERE t.survey_id = y.id) AS targets,
          coalesce((SELECT json_agg(json_build_object('workerId', p.worker_id, 'part', p.part) ORDER BY p.position)
           FROM survey_people p WHERE p.survey_id = y.id), '[]') AS people,
@@ -86,11 +88,11 @@ export async function surveyHead(id: string): Promise<MeasuredSurvey> {
   const minutesOf = new Map(nominal.map(({ taskId, durationMin }) => [taskId, durationMin]));
   const shiftMin = shiftMinOf(nominal);
   const targets = head.targets.map(
-    ({ taskId, samplesCount, sampleMin }, position): Target => ({
+    ({ taskId, sampleMin, ...planned }, position): Target => ({
+      ...planned,
       position,
       taskId,
       taskName: taskId === null ? null : (nameOf.get(taskId) ?? null),
-      samplesCount,
       sampleMin,
       // A task that is no longer in the nominal day is as long as its sample, at the least.
       nominalMin: taskId === null ? shiftMin : (minutesOf.get(taskId) ?? sampleMin),
@@ -113,8 +115,10 @@ export async function surveyDetail(actor: Actor, id: string): Promise<SurveyDeta
     name: string;
     serialNumber: string;
     calibrationDueOn: string | null;
+    calibrationFailedOn: string | null;
   }>(
-    `SELECT DISTINCT i.id, i.name, i.serial_number AS "serialNumber", i.calibration_due_on::text AS "calibrationDueOn"
+    `SELECT DISTINCT i.id, i.name, i.serial_number AS "serialNumber", i.calibration_due_on::text AS "calibrationDueOn",
+       ${FAILED_ON("i.id")} AS "calibrationFailedOn"
      FROM instrument_reservations v JOIN instruments i ON i.id = v.instrument_id WHERE v.survey_id = :id`,
     { id },
   );

@@ -1,4 +1,5 @@
 import type { z } from "zod";
+import type { FittingFound } from "../../shared/schemas/fit";
 import type { WorkerFilter, WorkerName, WorkerRow, WorkerView } from "../../shared/schemas/worker";
 import { decodeCursor, pageFrom } from "../lib/cursor";
 import { rows } from "../lib/db";
@@ -89,6 +90,20 @@ export async function findWorkerDetail(actor: Actor, id: string): Promise<Worker
   );
   const assignments = found.length > 0 ? await listAssignments(actor, { workerId: id }) : [];
   return found.map((worker) => ({ ...worker, assignments }));
+}
+
+/** Whose employee number it is, or who has every word of the text in name or number; nobody who has left. */
+export async function lookUpWorkers(actor: Actor, text: string): Promise<FittingFound["rows"]> {
+  const search = containsWords(nameAndNumber("w"), text);
+  const found = await rows<FittingFound["rows"][number]>(
+    `SELECT w.id, w.name, w.employee_number AS "employeeNumber", s.name AS "siteName", lower(w.employee_number) = lower(:text) AS "isExact"
+     FROM workers w JOIN sites s ON s.id = w.site_id
+     WHERE ${visible(workerPolicy, actor, "w")} AND (${search.condition}) AND (w.left_on IS NULL OR w.left_on >= current_date)
+     ORDER BY "isExact" DESC, w.name, w.id LIMIT 8`,
+    { ...search.values, text },
+  );
+  const exact = found.filter(({ isExact }) => isExact);
+  return exact.length > 0 ? exact : found;
 }
 
 /** Names and numbers only, the best part of a list to choose one person from. */

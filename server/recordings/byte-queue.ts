@@ -29,6 +29,19 @@ export class ByteQueue {
     return this.joined.subarray(0, filled);
   }
 
+  /** The next bytes, as many as are left of that many, without taking them. They are good until the next call. */
+  async peek(count: number): Promise<Uint8Array> {
+    while (this.chunk.length < count) {
+      const held = this.chunk;
+      if (!(await this.advance())) break;
+      const joined = new Uint8Array(held.length + this.chunk.length);
+      joined.set(held);
+      joined.set(this.chunk, held.length);
+      this.chunk = joined;
+    }
+    return this.chunk.subarray(0, count);
+  }
+
   async skip(count: number): Promise<void> {
     let left = count;
     while (left > 0 && (this.chunk.length > 0 || (await this.advance())))

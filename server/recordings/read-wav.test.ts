@@ -4,7 +4,7 @@ import { RecordingError } from "./recording-error";
 import { pieces, wav, wavHeader } from "./test-wav";
 
 async function readAll(bytes: Uint8Array, pieceBytes = 1000) {
-  const { format, blocks } = await openWav(pieces(bytes, pieceBytes));
+  const { format, blocks } = await openWav(pieces(bytes, pieceBytes), bytes.length);
   const channels: number[][] = Array.from({ length: format.channels }, () => []);
   for await (const block of blocks)
     for (const [index, samples] of block.entries()) channels[index]!.push(...samples);
@@ -115,12 +115,48 @@ describe("what cannot be used is refused with its reason", () => {
     expect((await refusal(bytes)).code).toBe("recording-length-unstated");
   });
 
+  test("shorter in its header than in fact: all that is there is given out, and it is asked about", async () => {
+    const seconds = new Array<number>(2 * 48_000).fill(0.1);
+    const bytes = wav({ ...plain, dataBytes: 48_000 }, [seconds]);
+    expect(await refusal(bytes)).toMatchObject({
+      code: "recording-longer",
+      params: { statedS: 0.5, foundS: 2 },
+    });
+    const given: number[] = [];
+    const { blocks } = await openWav(pieces(bytes, 777), bytes.length);
+    await expect(async () => {
+      for await (const [block] of blocks) given.push(...block!);
+    }).rejects.toThrow("recording-longer");
+    expect(given).toHaveLength(96_000);
+  });
+
+  test("of the length nought with sound behind it is of no stated length", async () => {
+    const seconds = new Array<number>(48_000).fill(0.1);
+    expect(await refusal(wav({ ...plain, dataBytes: 0 }, [seconds]))).toMatchObject({
+      code: "recording-length-unstated",
+      params: { foundS: 1 },
+    });
+  });
+
+  test("other chunks and padding behind the data are no sound", async () => {
+    const seconds = new Array<number>(24_000).fill(0.1);
+    const bytes = wav({ ...plain, sampleFormat: "int24" }, [seconds.slice(1)]);
+    const note = new Uint8Array(8 + 20_000);
+    note.set(new TextEncoder().encode("LIST"));
+    new DataView(note.buffer).setUint32(4, 20_000, true);
+    // The data are of an odd length, and padded by a byte.
+    for (const behind of [Uint8Array.of(0, ...note), note, new Uint8Array(512)])
+      expect((await readAll(Uint8Array.of(...bytes, ...behind))).channels[0]).toHaveLength(23_999);
+    const empty = wav({ ...plain, dataBytes: 0 }, [[]]);
+    expect((await refusal(Uint8Array.of(...empty, ...note))).code).toBe("recording-empty");
+  });
+
   test("damaged", async () => {
     const noFormat = wavHeader(plain, 1, 100);
     noFormat.set(new TextEncoder().encode("fmtx"), 12);
     expect((await refusal(noFormat)).code).toBe("recording-header-damaged");
     const notNumbers = wav({ ...plain, sampleFormat: "float32" }, [[0, Number.NaN, 0]]);
-    expect((await refusal(notNumbers)).code).toBe("recording-header-damaged");
+    expect((await refusal(notNumbers)).code).toBe("recording-not-numbers");
     // Half a header, and a piece of a length that a format never has.
     expect((await refusal(wavHeader(plain, 1, 100).subarray(0, 30))).code).toBe(
       "recording-header-damaged",

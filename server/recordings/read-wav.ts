@@ -37,11 +37,16 @@ export interface WavReader {
  * or two channels. Chunks it has no use for are passed over. Memory does not depend on the length.
  *
  * `blocks` ends in a RecordingError `recording-truncated` where the data are shorter than the header says, after all
- * that is there was given out; likewise `recording-length-unstated` where the header leaves the length open.
+ * that is there was given out; likewise `recording-longer` where they go on behind the length that it says, and
+ * `recording-length-unstated` where it leaves the length open, or says none and there are data.
  *
+ * @param sizeBytes of the whole file, where it is known: tells sound behind the stated end from another chunk.
  * @throws RecordingError
  */
-export async function openWav(source: AsyncIterable<Uint8Array>): Promise<WavReader> {
+export async function openWav(
+  source: AsyncIterable<Uint8Array>,
+  sizeBytes: number | null = null,
+): Promise<WavReader> {
   const bytes = new ByteQueue(source);
   const opening = await bytes.take(12);
   const container = opening && latin(opening, 0, 4);
@@ -58,26 +63,55 @@ export async function openWav(source: AsyncIterable<Uint8Array>): Promise<WavRea
     const head = await bytes.take(8);
     if (!head) throw new RecordingError(format ? "recording-empty" : "recording-header-damaged");
     const id = latin(head, 0, 4);
-    const sizeBytes = new DataView(head.buffer, head.byteOffset).getUint32(4, true);
+    const chunkBytes = new DataView(head.buffer, head.byteOffset).getUint32(4, true);
     if (id === "data") {
       if (!format) throw new RecordingError("recording-header-damaged");
-      const dataBytes = sizeBytes === LENGTH_ELSEWHERE ? longDataBytes : sizeBytes;
-      if (dataBytes === 0) throw new RecordingError("recording-empty");
+      const dataBytes = chunkBytes === LENGTH_ELSEWHERE ? longDataBytes : chunkBytes;
       const frameBytes = format.channels * BYTES[format.sampleFormat];
-      const statedFrames = dataBytes === null ? null : Math.floor(dataBytes / frameBytes);
+      const bytesPerSecond = format.rateHz * frameBytes;
+      const soundGoesOn = () => goesOn(bytes, sizeBytes, bytesPerSecond);
+      if (dataBytes === 0 && !(await soundGoesOn())) throw new RecordingError("recording-empty");
+      const isUnstated = dataBytes === null || dataBytes === 0;
+      const statedFrames = isUnstated ? null : Math.floor(dataBytes / frameBytes);
       if (statedFrames === 0) throw new RecordingError("recording-empty");
       const whole = { ...format, statedFrames };
-      return { format: whole, blocks: readBlocks(bytes, whole), bytesRead: () => bytes.taken };
+      const blocks = readBlocks(bytes, whole, soundGoesOn);
+      return { format: whole, blocks, bytesRead: () => bytes.taken };
     }
-    const padded = sizeBytes + (sizeBytes % 2);
+    const padded = chunkBytes + (chunkBytes % 2);
     if (id === "ds64" || id === "fmt ") {
-      if (sizeBytes > MAX_FORMAT_CHUNK) throw new RecordingError("recording-header-damaged");
+      if (chunkBytes > MAX_FORMAT_CHUNK) throw new RecordingError("recording-header-damaged");
       const body = await bytes.take(padded);
       if (!body) throw new RecordingError("recording-header-damaged");
-      if (id === "fmt ") format = readFormat(body.subarray(0, sizeBytes));
+      if (id === "fmt ") format = readFormat(body.subarray(0, chunkBytes));
       else if (container !== "RIFF") longDataBytes = readLongLength(body);
     } else await bytes.skip(padded);
   }
+}
+
+/** A chunk's name: four printable letters, the first no blank. */
+const CHUNK_NAME = /^[!-~][ -~]{3}$/;
+/** Less than this is padding, and no sound, s. */
+const LEAST_MORE_S = 0.1;
+
+/** Whether what follows is more sound: not the end with its padding, and not the head of another chunk. */
+async function goesOn(
+  bytes: ByteQueue,
+  sizeBytes: number | null,
+  bytesPerSecond: number,
+): Promise<boolean> {
+  const leftBytes = sizeBytes === null ? Number.POSITIVE_INFINITY : sizeBytes - bytes.taken;
+  if (leftBytes < LEAST_MORE_S * bytesPerSecond) return false;
+  const next = await bytes.peek(9);
+  // Data of an odd length are padded by a byte.
+  return next.length === 9 && ![0, 1].some((from) => isChunkHead(next.subarray(from), leftBytes));
+}
+
+function isChunkHead(bytes: Uint8Array, leftBytes: number): boolean {
+  if (!CHUNK_NAME.test(latin(bytes, 0, 4))) return false;
+  return (
+    bytes.length < 8 || new DataView(bytes.buffer, bytes.byteOffset).getUint32(4, true) <= leftBytes
+  );
 }
 
 const BYTES: Record<SampleFormat, number> = {
@@ -135,13 +169,18 @@ const isSampleFormat = (name: string): name is SampleFormat => Object.hasOwn(BYT
 async function* readBlocks(
   bytes: ByteQueue,
   format: WavFormat,
+  soundGoesOn: () => Promise<boolean>,
 ): AsyncGenerator<Float32Array[], void, undefined> {
   const { channels, sampleFormat, statedFrames, rateHz } = format;
   const frameBytes = channels * BYTES[sampleFormat];
   const arrays = Array.from({ length: channels }, () => new Float32Array(BLOCK_FRAMES));
   let frames = 0;
-  while (statedFrames === null || frames < statedFrames) {
-    const wanted = Math.min(BLOCK_FRAMES, (statedFrames ?? Infinity) - frames);
+  let isPastStated = false;
+  for (;;) {
+    isPastStated ||= frames === statedFrames && (await soundGoesOn());
+    if (frames === statedFrames && !isPastStated) break;
+    const left = statedFrames === null || isPastStated ? BLOCK_FRAMES : statedFrames - frames;
+    const wanted = Math.min(BLOCK_FRAMES, left);
     const block = await bytes.takeUpTo(wanted * frameBytes);
     const count = Math.floor(block.length / frameBytes);
     if (count > 0) {
@@ -154,8 +193,9 @@ async function* readBlocks(
   if (frames === 0) throw new RecordingError("recording-empty");
   const foundS = frames / rateHz;
   if (statedFrames === null) throw new RecordingError("recording-length-unstated", { foundS });
+  const statedS = statedFrames / rateHz;
+  if (frames > statedFrames) throw new RecordingError("recording-longer", { statedS, foundS });
   if (frames < statedFrames) {
-    const statedS = statedFrames / rateHz;
     throw new RecordingError("recording-truncated", {
       missingS: statedS - foundS,
       statedS,
@@ -200,7 +240,7 @@ function toFloats(
         break;
     }
     if (sampleFormat.startsWith("float") && !hasOnlyNumbers(array, frames))
-      throw new RecordingError("recording-header-damaged");
+      throw new RecordingError("recording-not-numbers");
   }
 }
 

@@ -76,7 +76,7 @@ export async function runRecordingJob(
   job: RecordingJob,
   onShare: (share: number) => void,
 ): Promise<RecordingLevels | RecordingTones> {
-  const reader = await openWav(source.bytes);
+  const reader = await openWav(source.bytes, source.sizeBytes);
   const faults: RecordingFault[] = [];
   const refuseOrKeep = (error: RecordingError) => {
     const { code } = error;

@@ -1,4 +1,5 @@
 import { evaluateRequest, RuleSetNotInForce } from "../../shared/day/evaluate-request";
+import { RULE_SETS } from "../../shared/rule-sets";
 import { EvaluateInput, EvaluateView } from "../../shared/schemas/evaluation";
 import { endpoint } from "../lib/endpoint";
 import { issue, unprocessable } from "../lib/errors";
@@ -19,7 +20,12 @@ export function defineEvaluateRoutes(): void {
       } catch (error) {
         if (!(error instanceof RuleSetNotInForce)) throw error;
         const { path, key, date } = error;
-        throw unprocessable([issue(path, "rule-set-not-in-force", { key, date })]);
+        const isKnown = RULE_SETS.some((ruleSet) => ruleSet.key === key);
+        throw unprocessable([
+          isKnown
+            ? issue(path, "rule-set-not-in-force", { key, date })
+            : issue(path, "rule-set-unknown", { key }),
+        ]);
       }
     },
   );

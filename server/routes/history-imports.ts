@@ -9,7 +9,6 @@ import {
   HistoryReadOrder,
   HistoryStoreOrder,
 } from "../../shared/schemas/history";
-import { localDate } from "../../shared/time/zone";
 import { cancelHistoryImport } from "../commands/cancel-history-import";
 import { orderHistoryReading, orderHistoryStoring } from "../commands/order-history-reading";
 import { HISTORY_MEDIA_TYPES, startHistoryImport } from "../commands/start-history-import";
@@ -54,15 +53,6 @@ async function headOf(file: string, instrumentId: string): Promise<HeadReply> {
     remembered: remembered?.mapping ?? null,
     sheet: null,
   });
-}
-
-/** The local day that an import's run has or will have. */
-async function dateOf(found: HistoryImport): Promise<string> {
-  const facts = await row<{ timeZone: string; date: string | null }>(
-    `SELECT s.time_zone AS "timeZone", (SELECT r.date::text FROM runs r WHERE r.id = :runId) AS date FROM sites s WHERE s.id = :siteId`,
-    { siteId: found.siteId, runId: found.runId },
-  );
-  return facts?.date ?? localDate(new Date(found.report?.startsAt ?? 0), facts?.timeZone ?? "UTC");
 }
 
 export function defineHistoryImportRoutes(): void {
@@ -156,7 +146,7 @@ export function defineHistoryImportRoutes(): void {
         lock: true,
       });
       authorize(historyPolicy, actor, "change", found);
-      await orderHistoryStoring(actor, found, await dateOf(found), body);
+      await orderHistoryStoring(actor, found, body);
       return historyImportView(actor, found.id);
     },
   );

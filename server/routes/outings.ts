@@ -10,6 +10,7 @@ import {
 import { RunView } from "../../shared/schemas/run";
 import { endOuting, undoOuting } from "../commands/end-outing";
 import { recomputeRunDay } from "../commands/recompute-run-day";
+import { recordOuting } from "../commands/record-outing";
 import { startOuting } from "../commands/start-outing";
 import { todayAt } from "../lib/calendar";
 import { endpoint } from "../lib/endpoint";
@@ -83,7 +84,7 @@ export function defineOutingRoutes(): void {
   endpoint.post(
     "/outings",
     {
-      summary: "An instrument goes out",
+      summary: "An instrument goes out; of a day gone by, with its return",
       may: may.officer,
       body: OutingStart,
       reply: RunView,
@@ -94,7 +95,12 @@ export function defineOutingRoutes(): void {
         lock: true,
       });
       const site = await siteOfOuting(actor, body);
-      return view(actor, await startOuting(actor, site, instrument, body));
+      const { back, workerId, date } = body;
+      if (back === null) return view(actor, await startOuting(actor, site, instrument, body));
+      const entryId = randomUUID();
+      const id = await recordOuting(actor, site, instrument, { ...body, back }, entryId);
+      if (workerId) await recomputeRunDay(actor, { siteId: site.id, workerId, date, entryId });
+      return view(actor, id);
     },
   );
 

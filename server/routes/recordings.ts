@@ -51,6 +51,14 @@ async function timeZoneOf(actor: Actor, siteId: string): Promise<string> {
   return (await findVisible(Site, sitePolicy, siteId, actor)).timeZone;
 }
 
+/** Where a tone belongs: to its task's site, or to the site that is named. */
+async function siteOfTone(actor: Actor, { taskId, siteId = "" }: ToneForm): Promise<string> {
+  if (taskId !== undefined) return (await taskOf(actor, taskId)).siteId;
+  const site = await findVisible(Site, sitePolicy, siteId, actor);
+  authorize(historyPolicy, actor, "change", { siteId: site.id });
+  return site.id;
+}
+
 async function resolveCalibration(
   given: RecordingForm["calibration"],
   siteId: string,
@@ -121,7 +129,7 @@ export function defineRecordingRoutes(): void {
       upload: { limitBytes: TONE_LIMIT_BYTES, toStore: true },
     },
     async ({ actor, body, staged }) => {
-      const { siteId } = await taskOf(actor, body.taskId);
+      const siteId = await siteOfTone(actor, body);
       const { toneDb, frequencyHz, file } = body;
       return measureTone(actor, staged!, { siteId, fileName: file.name, toneDb, frequencyHz });
     },

@@ -1,4 +1,5 @@
 import { IdParams } from "../../shared/schemas/common";
+import { FitDistribution, FitPolicyInput } from "../../shared/schemas/fit";
 import {
   NewSiteInput,
   SiteInput,
@@ -9,6 +10,7 @@ import {
 import { addSiteSettings } from "../commands/add-site-settings";
 import { changeSite } from "../commands/change-site";
 import { createSite } from "../commands/create-site";
+import { setFitPolicy } from "../commands/set-fit-policy";
 import { endpoint } from "../lib/endpoint";
 import { only } from "../lib/only";
 import { type Actor, authorize, findVisible } from "../lib/policy";
@@ -16,6 +18,7 @@ import { requireRevision } from "../lib/revision";
 import { Site } from "../models/site";
 import { may, sitePolicy } from "../policies";
 import { presentSite } from "../presenters/site";
+import { fitDistribution } from "../queries/fit-distribution";
 import { listSites } from "../queries/sites";
 
 const view = async (actor: Actor, id: string) =>
@@ -72,6 +75,40 @@ export function defineSiteRoutes(): void {
       await requireRevision(site, ifMatch, () => view(actor, site.id));
       await changeSite(actor, site, body);
       return view(actor, site.id);
+    },
+  );
+
+  endpoint.put(
+    "/sites/:id/fit-policy",
+    {
+      summary: "How sure a fit has to be, and when it is tested again",
+      may: may.officer,
+      params: IdParams,
+      body: FitPolicyInput,
+      reply: SiteView,
+      needsRevision: true,
+    },
+    async ({ actor, params, body, ifMatch }) => {
+      const site = await findVisible(Site, sitePolicy, params.id, actor, { lock: true });
+      authorize(sitePolicy, actor, "changeRules", site);
+      const before = await view(actor, site.id);
+      await requireRevision(site, ifMatch, async () => before);
+      await setFitPolicy(actor, site, before.fitPolicy, body);
+      return view(actor, site.id);
+    },
+  );
+
+  endpoint.get(
+    "/sites/:id/fits",
+    {
+      summary: "A site's own fits by model, beside what the label says",
+      may: may.readFitting,
+      params: IdParams,
+      reply: FitDistribution,
+    },
+    async ({ actor, params }) => {
+      const site = await findVisible(Site, sitePolicy, params.id, actor);
+      return fitDistribution(actor, site.id);
     },
   );
 

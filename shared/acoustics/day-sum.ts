@@ -158,15 +158,21 @@ export function boundsOfReadings(shift: ShiftInput, law: ExchangeLaw): ReadingBo
 
 /** What a shift's readings under other settings prove, where the tasks leave the matter open. */
 function narrow(tasks: Sum, shift: ShiftInput, law: ExchangeLaw): Sum {
-  let { least, most, missing } = tasks;
-  for (const { atLeast, atMost } of boundsOfReadings(shift, law)) {
-    least = Math.max(least, atLeast);
-    if (atMost === null || atMost >= most) continue;
-    most = atMost;
-    missing = null;
-  }
-  // Where tasks and readings contradict each other, the worker's own reading is believed.
-  return { least, most: Math.max(least, most), missing };
+  const readings = boundsTogether(boundsOfReadings(shift, law));
+  const least = Math.max(tasks.least, readings.least);
+  const most = Math.min(tasks.most, readings.most);
+  // Where tasks and readings contradict each other, the worker's own reading is believed, as far as it goes.
+  if (least > most) return { ...readings, missing: null };
+  return { least, most, missing: readings.most < tasks.most ? null : tasks.missing };
+}
+
+/** What several readings leave possible: what all allow or, where they contradict each other, what any of them does. */
+function boundsTogether(bounds: readonly ReadingBounds[]): Pick<Sum, "least" | "most"> {
+  const leasts = bounds.map(({ atLeast }) => atLeast);
+  const mosts = bounds.map(({ atMost }) => atMost ?? Number.POSITIVE_INFINITY);
+  const least = Math.max(0, ...leasts);
+  const most = Math.min(Number.POSITIVE_INFINITY, ...mosts);
+  return least <= most ? { least, most } : { least: Math.min(...leasts), most: Math.max(...mosts) };
 }
 
 /** The tasks of a shift without a governing reading, with what its other readings prove about them. */

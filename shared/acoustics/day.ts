@@ -253,7 +253,7 @@ function judgeMaximum(
   criterion: Criterion,
   ruleSet: RuleSetVersion,
 ): CriterionResult {
-  const { leastDb, mostDb, basis, reason } = dayMaximum(input, criterion);
+  const { leastDb, mostDb, basis, reason } = dayMaximum(input, criterion, ruleSet.protection);
   const outcome = judge(leastDb, mostDb, criterion.value, criterion.comparator, null);
   const isDecided = outcome !== "undecided";
   const isExact = leastDb === mostDb;

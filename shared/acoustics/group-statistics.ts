@@ -50,7 +50,10 @@ export interface GroupDescription {
   readonly workerCount: number;
   readonly meanDb: number | null;
   readonly sdDb: number | null;
-  /** Mean by energy; where samples lie below a threshold, that of the fitted distribution. */
+  /**
+   * Mean by energy; where samples lie below a threshold, that of the fitted distribution. Null where the levels are none
+   * of energy: the TWA of a dose by another exchange rate, or with a threshold, has no mean by energy.
+   */
   readonly energyMeanDb: number | null;
   /** K of the tolerance limit. */
   readonly toleranceFactor: number | null;
@@ -74,6 +77,7 @@ export interface GroupDescription {
 export function describeGroup(
   samples: readonly GroupSample[],
   levelsDb: readonly number[] = [],
+  isEnergy = true,
 ): GroupDescription {
   const sampleCount = samples.length;
   if (sampleCount === 0) throw new RangeError("A group's figures need at least one sample");
@@ -89,7 +93,7 @@ export function describeGroup(
     ...counts,
     meanDb: reason === "too-few-samples" && belowCount === 0 ? values[0]! : null,
     sdDb: null,
-    energyMeanDb: reason === "too-few-samples" && belowCount === 0 ? values[0]! : null,
+    energyMeanDb: isEnergy && reason === "too-few-samples" && belowCount === 0 ? values[0]! : null,
     toleranceFactor: null,
     toleranceLimitDb: null,
     exceedances: [],
@@ -102,6 +106,8 @@ export function describeGroup(
   }
   const { meanDb, sdDb } = belowCount === 0 ? moments(values) : unbiased(samples);
   const factor = toleranceFactor(sampleCount);
+  const meanByEnergyDb =
+    belowCount === 0 ? energyMeanDb(values) : meanDb + (Math.LN10 / 20) * sdDb * sdDb;
   const exceedances = levelsDb.map((levelDb) => ({
     levelDb,
     ...exceedanceOf(sampleCount, meanDb, sdDb, levelDb),
@@ -110,7 +116,7 @@ export function describeGroup(
     ...counts,
     meanDb,
     sdDb,
-    energyMeanDb: belowCount === 0 ? energyMeanDb(values) : meanDb + (Math.LN10 / 20) * sdDb * sdDb,
+    energyMeanDb: isEnergy ? meanByEnergyDb : null,
     toleranceFactor: factor,
     toleranceLimitDb: meanDb + factor * sdDb,
     exceedances,

@@ -1,13 +1,16 @@
-import { missingTime } from "./day-sum";
+import { missingTime, unaccountedMin } from "./day-sum";
 import { countsAsWorn } from "./protection/at-ear";
+import { type PeakReduction, peakReduction } from "./protection/impulse";
 import type {
   Criterion,
   CriterionResult,
   DayInput,
   PeakLevel,
   Reason,
+  RuleSetVersion,
   ShiftInput,
   TaskLevel,
+  TimedTask,
 } from "./types";
 
 /** The greatest level of a day, between what is certain and what is possible. */
@@ -29,13 +32,19 @@ interface Stated {
  * over the shift governs it; a part of it still proves what it shows. A mean level proves that the slow maximum is
  * at least as much, and a slow maximum that an A-weighted peak is.
  *
- * At the ear no protector is credited: a maximum in a task in which one is worn is not assessed unless it is under
- * the value without it.
+ * At the ear a protector is credited against a C-weighted peak by the type of the impulse noise, where type and H, M, L
+ * are known and it is worn throughout; a peak may come while it is off. Against a slow maximum none is. What is not
+ * credited is not assessed unless it is under the value without it.
  *
+ * @source en-458 Annex B
  * @source osha-1910.95 (a), (b): the ceiling on slow, the peak apart
  * @source eu-2003-10-ec art. 2(a)
  */
-export function dayMaximum(day: DayInput, criterion: Criterion): MaximumBounds {
+export function dayMaximum(
+  day: DayInput,
+  criterion: Criterion,
+  rule: RuleSetVersion["protection"],
+): MaximumBounds {
   const isAtEar = criterion.judged === "at-the-ear";
   let leastDb = Number.NEGATIVE_INFINITY;
   let mostDb = Number.NEGATIVE_INFINITY;
@@ -52,12 +61,14 @@ export function dayMaximum(day: DayInput, criterion: Criterion): MaximumBounds {
 
   for (const shift of day.shifts) {
     const isWorn = isAtEar && shift.tasks.some((task) => isWornAtAll(task, day));
+    const ofShift = isWorn ? reductionOfShift(shift, day, criterion, rule) : null;
     let coveringDb = Number.NEGATIVE_INFINITY;
     let isProjected = false;
     for (const reading of shift.readings) {
       const statedDb = statedMaximumDb(reading, criterion);
       if (statedDb === null) continue;
-      take(statedDb, statedDb, isWorn, null);
+      if (ofShift === null) take(statedDb, statedDb, isWorn, null);
+      else takeReduced(statedDb, ofShift, criterion, take);
       if (reading.covers === "part") continue;
       coveringDb = Math.max(coveringDb, statedDb);
       isProjected ||= reading.covers === "projected";
@@ -67,7 +78,7 @@ export function dayMaximum(day: DayInput, criterion: Criterion): MaximumBounds {
       if (isProjected) byProjected++;
       continue;
     }
-    takeTasks(shift, day, criterion, take);
+    takeTasks(shift, day, criterion, rule, take);
   }
   return {
     leastDb,
@@ -84,7 +95,107 @@ export function dayMaximum(day: DayInput, criterion: Criterion): MaximumBounds {
 
 type Take = (atLeastDb: number, atMostDb: number, isWorn: boolean, why: Reason | null) => void;
 
-function takeTasks(shift: ShiftInput, day: DayInput, criterion: Criterion, take: Take): void {
+/** A peak under a protector: while worn, and bare where it may come while the protector is off. */
+interface Reduced {
+  readonly reduction: PeakReduction;
+  readonly whyBare: Reason | null;
+}
+
+function takeReduced(
+  statedDb: number,
+  { reduction, whyBare }: Reduced,
+  { value }: Criterion,
+  take: Take,
+): void {
+  const atEarDb = statedDb - reduction.reductionDb;
+  if (whyBare === null) take(atEarDb, atEarDb, false, null);
+  else take(atEarDb, statedDb, false, statedDb > value ? whyBare : null);
+}
+
+/** Null where nothing says how much comes off a peak of this task. */
+function reductionOf(
+  task: TimedTask,
+  criterion: Criterion,
+  rule: RuleSetVersion["protection"],
+): Reduced | null {
+  const { level, protection, wornPct } = task;
+  if (criterion.quantity !== "peak" || criterion.peakWeighting !== "C") return null;
+  if (level === null || protection === null) return null;
+  const reduction = peakReduction(level, protection, rule);
+  if (reduction === null) return null;
+  const whyBare = wornPct === null ? "wearing-unknown" : wornPct < 100 ? "worn-in-part" : null;
+  return { reduction, whyBare };
+}
+
+/**
+ * What comes off a peak that a reading states for a whole shift: it may have come in any task, so the least of all, and
+ * only where all of the shift is known and every task says how much.
+ */
+function reductionOfShift(
+  shift: ShiftInput,
+  day: DayInput,
+  criterion: Criterion,
+  rule: RuleSetVersion["protection"],
+): Reduced | null {
+  if (unaccountedMin(shift) > 0) return null;
+  let least: Reduced | null = null;
+  let whyBare: Reason | null = null;
+  for (const task of shift.tasks) {
+    if (task.durationMin === 0) continue;
+    const one = isWornAtAll(task, day) ? reductionOf(task, criterion, rule) : null;
+    if (one === null) return null;
+    whyBare ??= one.whyBare;
+    if (least === null || one.reduction.reductionDb < least.reduction.reductionDb) least = one;
+  }
+  return least && { ...least, whyBare };
+}
+
+/** A peak that counts at the ear with a protector credited; for showing the working. */
+export interface CreditedPeak {
+  /** Null for a reading over the shift. */
+  readonly task: TimedTask | null;
+  readonly statedDb: number;
+  readonly atEarDb: number;
+  readonly by: PeakReduction;
+}
+
+/** Every peak of a day from which a protector takes something off under a criterion. */
+export function creditedPeaks(
+  day: DayInput,
+  criterion: Criterion,
+  rule: RuleSetVersion["protection"],
+): CreditedPeak[] {
+  if (criterion.quantity !== "peak" || criterion.judged !== "at-the-ear") return [];
+  const found: CreditedPeak[] = [];
+  const add = (task: TimedTask | null, statedDb: number | null, reduced: Reduced | null) => {
+    if (statedDb === null || reduced === null) return;
+    const { reduction } = reduced;
+    found.push({ task, statedDb, atEarDb: statedDb - reduction.reductionDb, by: reduction });
+  };
+  for (const shift of day.shifts) {
+    const ofShift = reductionOfShift(shift, day, criterion, rule);
+    let isCovered = false;
+    for (const reading of shift.readings) {
+      const statedDb = statedMaximumDb(reading, criterion);
+      add(null, statedDb, ofShift);
+      isCovered ||= statedDb !== null && reading.covers !== "part";
+    }
+    if (isCovered) continue;
+    for (const task of shift.tasks) {
+      if (task.level === null || task.durationMin === 0 || !isWornAtAll(task, day)) continue;
+      add(task, statedMaximumDb(task.level, criterion), reductionOf(task, criterion, rule));
+    }
+  }
+  return found;
+}
+
+function takeTasks(
+  shift: ShiftInput,
+  day: DayInput,
+  criterion: Criterion,
+  rule: RuleSetVersion["protection"],
+  take: Take,
+): void {
   const unlimited = Number.POSITIVE_INFINITY;
   for (const task of shift.tasks) {
     if (task.durationMin === 0) continue;
@@ -94,7 +205,9 @@ function takeTasks(shift: ShiftInput, day: DayInput, criterion: Criterion, take:
       continue;
     }
     const statedDb = statedMaximumDb(withSteady(task.level), criterion);
-    if (statedDb !== null) take(statedDb, statedDb, isWorn, null);
+    const reduced = isWorn && statedDb !== null ? reductionOf(task, criterion, rule) : null;
+    if (statedDb !== null && reduced !== null) takeReduced(statedDb, reduced, criterion, take);
+    else if (statedDb !== null) take(statedDb, statedDb, isWorn, null);
     else take(provenDb(task.level, criterion), unlimited, isWorn, whyNot(task.level, criterion));
   }
   // Time said to be quiet has its level for a maximum too.

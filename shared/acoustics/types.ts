@@ -93,7 +93,7 @@ export interface BandAttenuation {
   readonly sdDb: OctaveBandValues;
 }
 
-/** Test frequencies of the US label, Hz. @source epa-40-cfr-211.206 */
+/** Test frequencies of the US label, Hz. @source epa-40-cfr-211 211.206 */
 export const US_LABEL_HZ = [125, 250, 500, 1000, 2000, 3150, 4000, 6300, 8000] as const;
 
 /** Real-ear attenuation at `US_LABEL_HZ`: mean and standard deviation, dB. */
@@ -269,6 +269,7 @@ export type Reason =
   | "saturated"
   | "not-stated"
   | "peak-at-ear-not-assessed"
+  | "worn-in-part"
   | "imported";
 
 /** Why no uncertainty can be stated. */
@@ -361,7 +362,7 @@ export interface CriterionResult {
 
 export interface MethodResult {
   readonly method: AttenuationMethod;
-  /** At-ear level while worn, active part off, dB(A). */
+  /** What is left of the noise at the ear while worn, active part off and without programme audio, dB(A). */
   readonly atEarDb: number | null;
   readonly wasClamped: boolean;
   readonly reason: Reason | null;
@@ -385,6 +386,15 @@ export interface TaskAtEar {
   readonly word: ProtectorWord | null;
   readonly wordActive: ProtectorWord | null;
   readonly reason: Reason | null;
+  /**
+   * Programme audio that is in the levels while worn, dB(A), and what the protector leaves of the noise alone, active
+   * part off and on. Absent without one.
+   */
+  readonly audio?: {
+    readonly levelDb: number;
+    readonly noiseDb: number;
+    readonly noiseActiveDb: number | null;
+  };
 }
 
 export interface DayEvaluation {

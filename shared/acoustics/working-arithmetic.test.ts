@@ -259,7 +259,9 @@ function checkBands(table: WorkingTable, alpha: number): void {
     }
     near(read(cells, "level")! + read(cells, "weighting")!, read(cells, "exposed")!);
     near(read(cells, "mean")! - alpha * read(cells, "deviation")!, read(cells, "assumed")!);
-    near(read(cells, "exposed")! - read(cells, "assumed")!, read(cells, "behind")!);
+    const credited = read(cells, "credited") ?? read(cells, "assumed")!;
+    expect(credited).toBeLessThanOrEqual(read(cells, "assumed")!);
+    near(read(cells, "exposed")! - credited, read(cells, "behind")!);
     if (cells["behind-on"]) {
       near(read(cells, "behind")! - read(cells, "active")!, read(cells, "behind-on")!);
     }

@@ -9,6 +9,12 @@ import {
   scaleOf,
   steadyWeight,
 } from "./protection/at-ear";
+import {
+  type AudioLaw,
+  audioLaw,
+  withAudioDb,
+  withAudioWeight,
+} from "./protection/programme-audio";
 import { wornShareLevelDb } from "./protection/wearing-time";
 import type {
   AttenuationMethod,
@@ -16,6 +22,7 @@ import type {
   DayInput,
   ShiftInput,
   TaskAtEar,
+  TaskLevel,
   TimedTask,
 } from "./types";
 import type { Bound } from "./working-parts";
@@ -32,8 +39,19 @@ export interface TimeAtEar {
   readonly scale: number;
   /** Without the protector, as it counts here, dB; null: below the threshold, or nothing of it is certain. */
   readonly bareDb: number | null;
+  /** The same before the reading's factor, where that is part of the level here: with programme audio. Else the same. */
+  readonly tasksDb: number | null;
   /** While worn, on the level that counts, dB. */
   readonly wornDb: number | null;
+  readonly wornOnDb: number | null;
+  /** What is left of the noise and the programme that is added to it; null without one. */
+  readonly audio: {
+    readonly levelDb: number;
+    readonly noiseDb: number | null;
+    readonly noiseOnDb: number | null;
+    /** Added by energy, or as weights under the rule's exchange rate, which bounds the sum. */
+    readonly isByEnergy: boolean;
+  } | null;
   /** Share worn, 0 to 1; 1 where it is not known. */
   readonly worn: number;
   readonly offDb: number | null;
@@ -86,7 +104,7 @@ export class DayAtEarRows {
     atEar: DayAtEar,
     isLeast: boolean,
   ): TimeAtEar[] {
-    const { law, factor } = this;
+    const { law } = this;
     const bareLaw: ExchangeLaw = { ...this.outsideLaw, table: null };
     const scale = scaleOf(shift, day, law, this.outsideLaw);
     const likeness = likenessFactor(shift);
@@ -98,30 +116,37 @@ export class DayAtEarRows {
       const weight = scale.isByReading
         ? steadyWeight(task.level.levelDb, lawHere)
         : (isLeast ? leastAtEar : mostAtEar)(task.level, lawHere, this.outsideLaw);
-      const bareDb = weight > 0 ? levelOfWeight(weight, law) : null;
-      const takenOffDb =
-        seen.isWorn && seen.wornDb !== null ? task.level.levelDb - seen.wornDb : null;
+      const tasksDb = weight > 0 ? levelOfWeight(weight, law) : null;
       const worn = seen.isWorn ? (task.wornPct ?? 100) / 100 : 0;
-      const under = (offDb: number | null): number | null =>
-        bareDb === null || offDb === null
-          ? bareDb
-          : wornShareLevelDb(bareDb, bareDb - offDb, 100 * worn, factor);
-      rows.push({
+      const common = {
         id: task.id,
         shiftIndex,
         task,
         atEar: seen,
         minutes: task.durationMin * likeness,
-        scale: scale.isByReading ? scale.factor / likeness : 1,
-        bareDb,
-        wornDb: bareDb === null || takenOffDb === null ? null : bareDb - takenOffDb,
+        tasksDb,
         worn,
-        offDb: under(takenOffDb),
-        onDb: under(
-          seen.wornActiveDb === null ? takenOffDb : task.level.levelDb - seen.wornActiveDb,
-        ),
         isCredited: atEar.creditedTaskIds.has(task.id),
-      });
+      };
+      rows.push(
+        seen.audio
+          ? {
+              ...common,
+              ...this.underAudio(
+                task.level,
+                seen,
+                weight * scale.ofReading,
+                worn,
+                audioLaw(seen.audio.levelDb, task.level, law, scale.isByReading),
+                isLeast,
+              ),
+            }
+          : {
+              ...common,
+              ...this.underNoise(task.level, seen, tasksDb, worn),
+              scale: scale.isByReading ? scale.factor / likeness : 1,
+            },
+      );
     }
     if (shift.unaccounted.how === "quiet" && unaccountedMin(shift) > 0) {
       const counts = quietSum(shift, bareLaw) > 0;
@@ -134,7 +159,10 @@ export class DayAtEarRows {
         minutes: unaccountedMin(shift),
         scale: scale.isByReading ? scale.factor : 1,
         bareDb: quietDb,
+        tasksDb: quietDb,
         wornDb: null,
+        wornOnDb: null,
+        audio: null,
         worn: 0,
         offDb: quietDb,
         onDb: quietDb,
@@ -142,6 +170,60 @@ export class DayAtEarRows {
       });
     }
     return rows;
+  }
+
+  private underNoise(level: TaskLevel, seen: TaskAtEar, bareDb: number | null, worn: number) {
+    const takenOffDb = seen.isWorn && seen.wornDb !== null ? level.levelDb - seen.wornDb : null;
+    const takenOffOnDb = seen.wornActiveDb === null ? null : level.levelDb - seen.wornActiveDb;
+    const left = (offDb: number | null): number | null =>
+      bareDb === null || offDb === null ? null : bareDb - offDb;
+    const inTask = (wornDb: number | null): number | null =>
+      bareDb === null || wornDb === null
+        ? bareDb
+        : wornShareLevelDb(bareDb, wornDb, 100 * worn, this.factor);
+    const wornDb = left(takenOffDb);
+    const wornOnDb = left(takenOffOnDb);
+    return {
+      bareDb,
+      wornDb,
+      wornOnDb,
+      audio: null,
+      offDb: inTask(wornDb),
+      onDb: inTask(wornOnDb ?? wornDb),
+    };
+  }
+
+  /** With a programme the reading's factor is part of the noise's level, since it is not on the programme. */
+  private underAudio(
+    level: TaskLevel,
+    seen: TaskAtEar,
+    bareWeight: number,
+    worn: number,
+    audio: AudioLaw,
+    isLeast: boolean,
+  ) {
+    const { law } = this;
+    const { levelDb: audioDb, noiseDb, noiseActiveDb } = seen.audio!;
+    const leftOf = (atEarDb: number): number => bareWeight * weightOf(atEarDb - level.levelDb, law);
+    const whileWorn = (atEarDb: number): number =>
+      withAudioWeight(leftOf(atEarDb), audio, isLeast ? "least" : "most");
+    const inTask = (atEarDb: number): number =>
+      levelOfWeight(worn * whileWorn(atEarDb) + (1 - worn) * bareWeight, law);
+    const dbOrNull = (weight: number) => (weight > 0 ? levelOfWeight(weight, law) : null);
+    return {
+      bareDb: dbOrNull(bareWeight),
+      wornDb: levelOfWeight(whileWorn(noiseDb), law),
+      wornOnDb: noiseActiveDb === null ? null : levelOfWeight(whileWorn(noiseActiveDb), law),
+      audio: {
+        levelDb: audioDb,
+        noiseDb: dbOrNull(leftOf(noiseDb)),
+        noiseOnDb: noiseActiveDb === null ? null : dbOrNull(leftOf(noiseActiveDb)),
+        isByEnergy: isLeast || audio.isUpperByEnergy,
+      },
+      offDb: inTask(noiseDb),
+      onDb: inTask(noiseActiveDb ?? noiseDb),
+      scale: 1,
+    };
   }
 
   private shiftOf(shift: ShiftInput, day: DayInput, atEar: DayAtEar): ShiftAtEar {
@@ -186,6 +268,12 @@ export class DayAtEarRows {
       : powered * this.term(row, row.onDb) + (1 - powered) * this.term(row, row.offDb);
   }
 
+  private withAudio(noiseDb: number, { levelDb, isByEnergy }: NonNullable<TimeAtEar["audio"]>) {
+    return isByEnergy
+      ? withAudioDb(noiseDb, levelDb)
+      : levelOfWeight(weightOf(noiseDb, this.law) + weightOf(levelDb, this.law), this.law);
+  }
+
   levelOf(sum: number): number {
     return levelOfWeight(sum, this.law);
   }
@@ -194,14 +282,15 @@ export class DayAtEarRows {
   byMethod(method: AttenuationMethod): number | null {
     let sum = 0;
     for (const row of this.rows) {
-      const { atEar, task, bareDb, worn } = row;
+      const { atEar, task, bareDb, worn, audio } = row;
       if (!atEar?.isWorn || !task?.level || bareDb === null) {
         sum += this.term(row, row.offDb);
         continue;
       }
       const result = atEar.methods.find((one) => one.method === method);
       if (result?.atEarDb == null) return null;
-      const wornDb = bareDb - (task.level.levelDb - result.atEarDb);
+      const leftDb = bareDb - (task.level.levelDb - result.atEarDb);
+      const wornDb = audio === null ? leftDb : this.withAudio(leftDb, audio);
       sum += this.term(row, wornShareLevelDb(bareDb, wornDb, 100 * worn, this.factor));
     }
     return sum > 0 ? this.levelOf(sum) : null;

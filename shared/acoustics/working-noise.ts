@@ -508,16 +508,14 @@ export class NoiseUnderLaw {
     const weight = isMost ? after.most : after.least;
     const readings = boundsOfReadings(shift, law);
     const byTasks = isMost ? tasks.most : tasks.least;
-    // Where they contradict each other the least of a reading stands for both.
-    const upper = isMost ? readings.find(({ atMost }) => atMost === weight) : undefined;
-    const lower = readings.find(({ atLeast }) => atLeast === weight);
-    if (byTasks === weight || !(upper ?? lower)) {
+    const reading = readings.find(({ atLeast, atMost }) => (isMost ? atMost : atLeast) === weight);
+    if (byTasks === weight || !reading) {
       return { weight, restsOn: text(/*i18n*/ "its tasks"), lines: [], notes: [] };
     }
     return {
       weight,
       restsOn: text(/*i18n*/ "a reading under other settings"),
-      ...this.otherReading((upper ?? lower)!, upper ? "most" : "least", label),
+      ...this.otherReading(reading, isMost ? "most" : "least", label),
     };
   }
 

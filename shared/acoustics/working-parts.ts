@@ -35,6 +35,8 @@ export type WorkingValue =
   /** A name that somebody gave: not translated. */
   | { readonly kind: "name"; readonly name: string }
   | { readonly kind: "text"; readonly text: WorkingText }
+  /** A document and its clause, shown in short. */
+  | { readonly kind: "source"; readonly source: WorkingSource }
   | { readonly kind: "list"; readonly values: readonly WorkingValue[] }
   | { readonly kind: "math"; readonly parts: readonly MathPart[] };
 
@@ -247,6 +249,14 @@ export function bounded<V extends WorkingValue>(of: V, bound: Bound | null): V {
 
 export function scientific(of: number): WorkingValue {
   return { kind: "scientific", number: of };
+}
+
+/** Where a row has documents of its own; null where there is nothing to cite. */
+export function cited(sources: readonly WorkingSource[]): WorkingValue | null {
+  const values = sources.flatMap((source) =>
+    source.id === null ? [] : [{ kind: "source", source } as const],
+  );
+  return values.length === 0 ? null : { kind: "list", values };
 }
 
 export function words(of: WorkingText): WorkingValue {

@@ -1,5 +1,7 @@
+import type { CreditedPeak } from "./maximum";
 import { activeAttenuationDb } from "./protection/active";
 import { DERATINGS, lcMinusLaDb } from "./protection/attenuation";
+import { combinationAttenuationDb } from "./protection/bone-conduction";
 import { SECOND_PROTECTOR_DB } from "./protection/double";
 import {
   A_WEIGHTING_DB,
@@ -15,6 +17,7 @@ import {
   type BandAttenuation,
   type MethodResult,
   OCTAVE_BANDS_HZ,
+  type OctaveBandValues,
   type Protection,
   type ProtectorData,
   type RuleSetVersion,
@@ -46,6 +49,9 @@ type Parts = readonly MathPart[];
 const LA: MathPart = symbol("L", "A");
 const WHILE_WORN: MathPart = symbol("L", "A,m", true);
 const WHILE_WORN_ON: MathPart = symbol("L", "A,m,on", true);
+/** What is left of the noise where a programme is added to it. */
+const NOISE_LEFT: MathPart = symbol("L", "N", true);
+const NOISE_LEFT_ON: MathPart = symbol("L", "N,on", true);
 const LC_MINUS_LA: Parts = [symbol("L", "C"), sign("−"), LA];
 
 /** A formula in letters and the same with its numbers. */
@@ -71,7 +77,7 @@ export function methodLines(
   const leastOf = (bare: MathPart, parts: Parts): Parts =>
     wasClamped ? [sign("min ("), bare, sign(","), ...parts, sign(")")] : parts;
   lines.push([
-    WHILE_WORN,
+    protection.audioDb == null ? WHILE_WORN : NOISE_LEFT,
     sign("="),
     ...leastOf(LA, allowed(formula.letters)),
     sign("="),
@@ -93,7 +99,11 @@ function methodFormula(
   const bands = outer ? combinationBands : inner.bands;
   switch (method) {
     case "octave-band": {
-      const reductionDb = bandReductionLine(taskLevel, bands!, rule, before);
+      const assumedDb = (outer ? combinationAttenuationDb : assumedAttenuationDb)(
+        bands!,
+        rule.alpha,
+      );
+      const reductionDb = bandReductionLine(taskLevel, assumedDb, before);
       return off(taskLevel, symbol("D", "A"), reductionDb);
     }
     case "hml":
@@ -103,7 +113,7 @@ function methodFormula(
         taskLevel,
         lcMinusLaDb(taskLevel)!,
         [symbol("SNR")],
-        outer ? snrOfBandsDb(assumedAttenuationDb(bands!, rule.alpha)) : inner.snrDb!,
+        outer ? snrOfBandsDb(combinationAttenuationDb(bands!, rule.alpha)) : inner.snrDb!,
       );
     case "slc80":
       return offC(taskLevel, lcMinusLaDb(taskLevel)!, [symbol("SLC", "80")], inner.slc80Db!);
@@ -147,7 +157,7 @@ function hmlFormula(
 ): Formula {
   const lcLaDb = lcMinusLaDb(taskLevel)!;
   const { hDb, mDb, lDb } = combination
-    ? hmlOfBandsDb(assumedAttenuationDb(combination, rule.alpha))
+    ? hmlOfBandsDb(combinationAttenuationDb(combination, rule.alpha))
     : { hDb: data.hDb!, mDb: data.mDb!, lDb: data.lDb! };
   const reductionDb = hmlReductionDb(hDb, mDb, lDb, lcLaDb)!;
   const isHigh = lcLaDb <= 2;
@@ -239,11 +249,9 @@ function deratedFormula(data: ProtectorData, rule: Rule, index: string): Formula
 /** What the bands take off an A-weighted level: the spectrum without them less the spectrum behind them. */
 function bandReductionLine(
   taskLevel: TaskLevel,
-  bands: BandAttenuation,
-  rule: Rule,
+  assumedDb: OctaveBandValues,
   before: Parts[],
 ): number {
-  const assumedDb = assumedAttenuationDb(bands, rule.alpha);
   const spectrumDb = taskLevel.octaveBandsDb!;
   const bareDb = weightedSumDb(spectrumDb, A_WEIGHTING_DB, assumedDb);
   const behindDb = levelBehindBandsDb(spectrumDb, assumedDb);
@@ -271,21 +279,21 @@ export function activeLines(
   taskLevel: TaskLevel,
   protection: Protection,
   rule: Rule,
-  { wornDb, wornActiveDb, reason }: TaskAtEar,
+  { wornDb, wornActiveDb, reason, audio }: TaskAtEar,
 ): Parts[] {
   if (wornDb === null || wornActiveDb === null) return [];
   const end = (gainDb: number): Parts => [
-    WHILE_WORN_ON,
+    audio ? NOISE_LEFT_ON : WHILE_WORN_ON,
     sign("="),
-    WHILE_WORN,
+    audio ? NOISE_LEFT : WHILE_WORN,
     sign("−"),
     symbol("G"),
     sign("="),
-    value(level(wornDb)),
+    value(level(audio?.noiseDb ?? wornDb)),
     sign("−"),
     value(difference(gainDb)),
     sign("="),
-    value(level(wornActiveDb), true),
+    value(level(audio?.noiseActiveDb ?? wornActiveDb), true),
   ];
   if (reason === "saturated") return [end(0)];
   const passiveDb = assumedAttenuationDb(protection.inner.bands!, rule.alpha);
@@ -311,6 +319,70 @@ export function activeLines(
   ];
 }
 
+/** Programme audio added to what is left of the noise, active part off and on. */
+export function programmeLines({ wornDb, wornActiveDb, audio }: TaskAtEar): Parts[] {
+  if (!audio || wornDb === null) return [];
+  const lines = [audioSum(audio.noiseDb, audio.levelDb, wornDb, "A,m", sign("10"))];
+  if (audio.noiseActiveDb !== null && wornActiveDb !== null)
+    lines.push(audioSum(audio.noiseActiveDb, audio.levelDb, wornActiveDb, "A,m,on", sign("10")));
+  return lines;
+}
+
+/** L′ = k lg(10^(L′N/k) + 10^(LP/k)) with its numbers, k = 10 by energy. */
+export function audioSum(
+  noiseDb: number,
+  audioDb: number,
+  sumDb: number,
+  sub: string,
+  k: MathPart,
+): Parts {
+  const noise = sub.endsWith(",on") ? NOISE_LEFT_ON : NOISE_LEFT;
+  const asPower = (exponent: MathPart): MathPart => power("10", [exponent, sign("/"), k]);
+  return [
+    symbol("L", sub, true),
+    sign("="),
+    k,
+    sign("lg ("),
+    asPower(noise),
+    sign("+"),
+    asPower(symbol("L", "P")),
+    sign(")"),
+    sign("="),
+    k,
+    sign("lg ("),
+    asPower(value(level(noiseDb))),
+    sign("+"),
+    asPower(value(level(audioDb))),
+    sign(")"),
+    sign("="),
+    value(level(sumDb), true),
+  ];
+}
+
+/** A peak under a protector by the type of its noise, with the numbers put in. */
+export function peakLine({ statedDb, atEarDb, by }: CreditedPeak): Parts {
+  const { type, ratingDb, lessDb, allowanceDb } = by;
+  const rating = symbol((["L", "M", "H"] as const)[type - 1]!);
+  const allowance = (part: MathPart): Parts => (allowanceDb > 0 ? [sign("+"), part] : []);
+  const shape = (peak: MathPart, of: MathPart, allowed: MathPart): Parts => {
+    const reduced: Parts =
+      lessDb > 0
+        ? [peak, sign("− ("), of, sign(`− ${lessDb})`), ...allowance(allowed)]
+        : [peak, sign("−"), of, ...allowance(allowed)];
+    return by.wasClamped ? [sign("min ("), peak, sign(","), ...reduced, sign(")")] : reduced;
+  };
+  const allowanceValue = value(number(allowanceDb));
+  return [
+    symbol("L", "C,peak", true),
+    sign("="),
+    ...shape(symbol("L", "C,peak"), rating, allowanceValue),
+    sign("="),
+    ...shape(value(level(statedDb)), value(number(ratingDb)), allowanceValue),
+    sign("="),
+    value(level(atEarDb), true),
+  ];
+}
+
 function withActive(protection: Protection, passiveDb: ReturnType<typeof assumedAttenuationDb>) {
   const activeDb = activeAttenuationDb(protection.inner.active!)!;
   return mapBands((band) => {
@@ -330,13 +402,16 @@ export function bandTable(
   const spectrumDb = taskLevel.octaveBandsDb;
   if (bands === null || spectrumDb === null) return null;
   const assumedDb = assumedAttenuationDb(bands, rule.alpha);
+  const creditedDb = protection.outer ? combinationAttenuationDb(bands, rule.alpha) : assumedDb;
+  const isCapped = creditedDb.some((bandDb, band) => bandDb !== assumedDb[band]);
   const hasActive = wornActiveDb !== null && reason !== "saturated";
   const activeDb = hasActive ? activeAttenuationDb(protection.inner.active!) : null;
   const bothDb = hasActive ? withActive(protection, assumedDb) : null;
   const rows = OCTAVE_BANDS_HZ.flatMap((bandHz, band) => {
     const levelDb = spectrumDb[band];
     const lossDb = assumedDb[band];
-    if (levelDb == null || lossDb == null) return [];
+    const takenOffDb = creditedDb[band];
+    if (levelDb == null || lossDb == null || takenOffDb == null) return [];
     const exposedDb = levelDb + A_WEIGHTING_DB[band]!;
     return [
       row(`band-${bandHz}`, [
@@ -347,7 +422,8 @@ export function bandTable(
         difference(bands.meanDb[band]!),
         difference(bands.sdDb[band]!),
         difference(lossDb),
-        level(exposedDb - lossDb),
+        ...(isCapped ? [difference(takenOffDb)] : []),
+        level(exposedDb - takenOffDb),
         ...(bothDb ? [difference(activeDb?.[band] ?? 0), level(exposedDb - bothDb[band]!)] : []),
       ]),
     ];
@@ -368,6 +444,9 @@ export function bandTable(
         ...(rule.alpha === 1 ? [] : [value(number(rule.alpha))]),
         symbol("s", "f"),
       ]),
+      ...(isCapped
+        ? [column("credited", text(/*i18n*/ "No more than by bone conduction"), true)]
+        : []),
       symbolColumn("behind", null, [symbol("L", "f", true)]),
       ...(bothDb
         ? [
@@ -387,7 +466,8 @@ export function bandTable(
           null,
           null,
           null,
-          level(levelBehindBandsDb(spectrumDb, assumedDb)),
+          ...(isCapped ? [null] : []),
+          level(levelBehindBandsDb(spectrumDb, creditedDb)),
           ...(bothDb ? [null, level(levelBehindBandsDb(spectrumDb, bothDb))] : []),
         ]),
         isTotal: true,

@@ -2,6 +2,7 @@ import { evaluateDay } from "./day";
 import { governingReading, likenessFactor, sumDay } from "./day-sum";
 import { dayUncertainty } from "./day-uncertainty";
 import { type ExchangeLaw, isSameLaw, lawOf, levelFactor } from "./exchange-law";
+import { creditedPeaks } from "./maximum";
 import { isSameFigure, outsideCriterion } from "./outside-criterion";
 import { evaluateAtEar } from "./protection/at-ear";
 import type {
@@ -27,6 +28,7 @@ import { boundedLevel, NoiseUnderLaw } from "./working-noise";
 import {
   type Bound,
   bounded,
+  cited,
   column,
   difference,
   fraction,
@@ -65,7 +67,14 @@ import {
   word,
   words,
 } from "./working-parts";
-import { activeLines, bandTable, methodLines } from "./working-protector";
+import {
+  activeLines,
+  audioSum,
+  bandTable,
+  methodLines,
+  peakLine,
+  programmeLines,
+} from "./working-protector";
 
 export type {
   MathPart,
@@ -555,24 +564,44 @@ class Builder {
 
   private verdictStep(judged: Criterion["judged"]): Draft {
     const results = this.resultsJudged(judged);
+    const equations = judged === "at-the-ear" ? this.peakLines() : [];
     return {
       title:
         judged === "at-the-ear"
           ? text(/*i18n*/ "Verdict at the ear")
           : text(/*i18n*/ "Verdict without protection"),
       tables: [this.verdictTable(results)],
+      equations,
       notes: (judged === "at-the-ear" ? [] : this.governing.notStated).map((what) =>
         text(/*i18n*/ "Not stated by the rule: {what}.", {
           what: { kind: "text", text: text(what) },
         }),
       ),
-      sources: unique(
-        results.map((result) => ({
-          id: null,
-          clause: criterionOf(this.governing, result).citation,
-        })),
-      ),
+      sources: [
+        ...(equations.length > 0 ? [{ id: "en-458", clause: /*i18n*/ "Annex B" } as const] : []),
+        ...unique(
+          results.map((result) => ({
+            id: null,
+            clause: criterionOf(this.governing, result).citation,
+          })),
+        ),
+      ],
     };
+  }
+
+  /** Peaks at the ear from which a protector takes something off, by the type of the impulse noise. */
+  private peakLines(): Line[] {
+    const { governing, input } = this;
+    const criterion = governing.criteria.find(
+      ({ quantity, judged }) => quantity === "peak" && judged === "at-the-ear",
+    );
+    if (!criterion) return [];
+    return creditedPeaks(input, criterion, governing.protection).map((peak) =>
+      line(
+        peakLine(peak),
+        peak.task ? name(peak.task.name) : words(text(/*i18n*/ "Reading over the shift")),
+      ),
+    );
   }
 
   private verdictTable(results: readonly CriterionResult[]): WorkingTable {
@@ -643,10 +672,9 @@ class Builder {
       ]),
       isEmphasized: task.timedTaskId === this.evaluation.decidingTaskId,
     }));
+    // Those of the others stand at their rows, with the day by each method.
     const methods = new Set(
-      this.evaluation.tasks.flatMap((task) =>
-        task.methods.flatMap(({ method, atEarDb }) => (atEarDb === null ? [] : [method])),
-      ),
+      this.evaluation.tasks.flatMap(({ governingMethod }) => governingMethod ?? []),
     );
     return {
       title: text(/*i18n*/ "What the protector does, while worn"),
@@ -692,6 +720,7 @@ class Builder {
       return [
         ...methodLines(of, protection, rule, governing),
         ...activeLines(of, protection, rule, atEar),
+        ...programmeLines(atEar),
       ].map((parts) => line(parts, name(task.name)));
     });
   }
@@ -861,7 +890,14 @@ class Builder {
           title: null,
           columns: [
             column("method", text(/*i18n*/ "Method"), false),
-            column("day", text(/*i18n*/ "Day at the ear, off"), true),
+            column(
+              "day",
+              evaluation.atEarActiveDb === null
+                ? text(/*i18n*/ "Day at the ear")
+                : text(/*i18n*/ "Day at the ear, off"),
+              true,
+            ),
+            column("source", text(/*i18n*/ "Source"), false),
             column("remark", null, false),
           ],
           rows: [
@@ -869,7 +905,7 @@ class Builder {
             ...on.flatMap(([title, db], index) =>
               db === null
                 ? []
-                : [row(`active-${index}`, [{ kind: "text", text: title }, level(db), null])],
+                : [row(`active-${index}`, [{ kind: "text", text: title }, level(db), null, null])],
             ),
           ],
         },
@@ -907,14 +943,28 @@ class Builder {
     if (this.evaluation.atEarDb === null) return [];
     const { rows, bound } = this.dayAtEar;
     const isMoved = rows.some(
-      ({ task, bareDb }) =>
-        task?.level && bareDb !== null && Math.abs(task.level.levelDb - bareDb) > 1e-9,
+      ({ task, tasksDb }) =>
+        task?.level && tasksDb !== null && Math.abs(task.level.levelDb - tasksDb) > 1e-9,
     );
     return [
       ...(isMoved
         ? [
             text(
               /*i18n*/ "Where a level counts by a bound of it, the protector takes as much off the bound.",
+            ),
+          ]
+        : []),
+      ...(rows.some(({ audio }) => audio !== null)
+        ? [
+            text(
+              /*i18n*/ "Programme audio under the protector adds to what is left of the noise, by energy, for as long as it is worn.",
+            ),
+          ]
+        : []),
+      ...(rows.some(({ audio }) => audio && !audio.isByEnergy)
+        ? [
+            text(
+              /*i18n*/ "Beside an average of this exchange rate the sum with the programme is only bounded: their weights added are the most it can be.",
             ),
           ]
         : []),
@@ -937,7 +987,9 @@ class Builder {
   private dayAtEarTable(): WorkingTable {
     const day = this.dayAtEar;
     const k = this.factorPart();
-    const hasScale = day.rows.some(({ scale }) => scale !== 1);
+    const hasScale = day.rows.some(
+      ({ scale, bareDb, tasksDb }) => scale !== 1 || bareDb !== tasksDb,
+    );
     const hasActive = this.evaluation.atEarActiveDb !== null;
     const hasBattery = hasActive && this.evaluation.atEarAsWorkedDb !== null;
     const termOf = (sub: string, isAtEar: boolean): MathPart[] => [
@@ -966,7 +1018,7 @@ class Builder {
     ];
     const cellsOf = (cells: Record<string, WorkingValue | null>) =>
       columns.map(({ id }) => cells[id] ?? null);
-    const bareTerm = (one: TimeAtEar) => day.term({ ...one, scale: 1 }, one.bareDb);
+    const bareTerm = (one: TimeAtEar) => day.term({ ...one, scale: 1 }, one.tasksDb);
     const total = (of: (one: TimeAtEar) => number) =>
       scientific(day.rows.reduce((sum, one) => sum + of(one), 0));
     const rows = day.rows.map((one) =>
@@ -975,7 +1027,7 @@ class Builder {
         cellsOf({
           task: one.task ? name(one.task.name) : words(text(/*i18n*/ "Quiet, as stated")),
           minutes: minutes(one.minutes),
-          bare: level(one.bareDb),
+          bare: level(one.tasksDb),
           "bare-term": scientific(bareTerm(one)),
           worn: share(100 * one.worn),
           "in-task": isNothing(one) ? words(COUNTS_NOTHING) : level(one.offDb),
@@ -1042,13 +1094,11 @@ class Builder {
           ],
           name(one.task!.name),
         );
-      const { atEar } = one;
       const lines = one.wornDb === null ? [] : [mix(one.wornDb, one.offDb!, "m")];
-      if (atEar?.wornActiveDb != null && atEar.wornDb !== null) {
-        lines.push(mix(one.wornDb! - (atEar.wornDb - atEar.wornActiveDb), one.onDb!, "m,on"));
-      }
+      if (one.wornOnDb !== null) lines.push(mix(one.wornOnDb, one.onDb!, "m,on"));
       return lines;
     });
+    const audioParts = day.rows.flatMap((one) => this.audioLines(one));
     const isSeveral = day.shifts.length > 1;
     const shiftParts = day.shifts.flatMap((shift, index): Line[] => {
       const label = isSeveral
@@ -1113,6 +1163,7 @@ class Builder {
       day.rows.reduce((sum, one) => sum + of(one), 0);
     const { atEarActiveDb, atEarAsWorkedDb } = evaluation;
     return [
+      ...audioParts,
       ...wornParts,
       ...shiftParts,
       ...(atEarActiveDb === null
@@ -1141,6 +1192,53 @@ class Builder {
     ];
   }
 
+  /** A programme added to what is left of the noise in one row, with the reading's factor put into the noise before. */
+  private audioLines(one: TimeAtEar): Line[] {
+    const { audio, task, bareDb, tasksDb } = one;
+    if (audio === null || !task) return [];
+    const label = name(task.name);
+    const k = this.factorPart();
+    const ofReading = one.bareDb !== null && tasksDb !== null && bareDb !== tasksDb;
+    const lines: Line[] = [];
+    if (ofReading) {
+      const shift = this.dayAtEar.shifts[one.shiftIndex];
+      const scale =
+        shift?.readingSum != null && shift.tasksSum ? shift.readingSum / shift.tasksSum : 1;
+      lines.push(
+        line(
+          [
+            symbol("L", "m"),
+            sign("="),
+            symbol("L", "task"),
+            sign("+"),
+            k,
+            sign("lg ("),
+            symbol("s"),
+            sign(")"),
+            sign("="),
+            value(level(tasksDb)),
+            sign("+"),
+            k,
+            sign("lg ("),
+            value(number(scale)),
+            sign(")"),
+            sign("="),
+            value(level(one.bareDb!), true),
+          ],
+          label,
+        ),
+      );
+    }
+    const by = audio.isByEnergy ? sign("10") : k;
+    const add = (noiseDb: number | null, wornDb: number | null, sub: string): void => {
+      if (noiseDb === null || wornDb === null) return;
+      lines.push(line(audioSum(noiseDb, audio.levelDb, wornDb, sub, by), label));
+    };
+    add(audio.noiseDb, one.wornDb, "A,m");
+    add(audio.noiseOnDb, one.wornOnDb, "A,m,on");
+    return lines;
+  }
+
   private readingGoverns(): boolean {
     return this.input.shifts.some((shift) => governingReading(shift, this.law) !== undefined);
   }
@@ -1163,6 +1261,7 @@ class Builder {
         ...row(method, [
           { kind: "method", method },
           level(isSole && governs ? evaluation.atEarDb : db),
+          cited(this.methodSources(method)),
           governs
             ? { kind: "text", text: text(/*i18n*/ "governs at this site") }
             : why

@@ -17,3 +17,6 @@ export function isNotified({ kind, criterion }: { kind: FindingKind; criterion: 
     criteria.some(({ id, kind }) => kind === "action" && `${key}:${id}` === criterion),
   );
 }
+
+/** Days further back are findings for the officer, and no news for anybody. Common practice, no source. */
+export const NEWS_FOR_DAYS = 31;

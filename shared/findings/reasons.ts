@@ -42,6 +42,8 @@ export function reasonText(i18n: I18n, reason: Reason | UncertaintyReason): stri
       return i18n.t("the rule does not state it");
     case "peak-at-ear-not-assessed":
       return i18n.t("no method gives a peak under a protector");
+    case "worn-in-part":
+      return i18n.t("it is not worn all the time, and a peak may come while it is off");
     case "imported":
       return i18n.t("imported");
     case "not-an-energy-level":
@@ -73,6 +75,7 @@ const REASONS: ReadonlySet<string> = new Set<Reason>([
   "saturated",
   "not-stated",
   "peak-at-ear-not-assessed",
+  "worn-in-part",
   "imported",
 ]);
 

@@ -138,6 +138,20 @@ const cases: readonly {
     noticed: "“The left cup is cracked”",
     worker: "Your safety officer has your report and will talk to you.",
   },
+  {
+    kind: "fit-failed",
+    facts: { protector: "Alder foam", parDb: 12.44, needDb: 18 },
+    order: "Fit Alder foam anew, or try another",
+    noticed: "Alder foam takes 12.4 dB off on this worker, 18.0 are needed",
+    worker: "Alder foam does not fit you well enough. Ask your supervisor to fit it anew.",
+  },
+  {
+    kind: "fit-due",
+    facts: { protector: "Alder foam", testedOn: "2025-03-02" },
+    order: "Test the fit",
+    noticed: "The fit of Alder foam was last tested on 2 March 2025",
+    worker: "Your protector’s fit is to be tested. Your supervisor will tell you when.",
+  },
 ];
 
 test.each(cases)(

@@ -13,3 +13,10 @@ export function formatDose(dosePct: number | null, locale: Locale, least = 0): s
 export function formatShare(sharePct: number | null, locale: Locale): string {
   return sharePct === null ? NO_FIGURE : `${formatNumber(sharePct, 0, locale)}\u00a0%`;
 }
+
+/** A probability or a share of a population, percent: near nothing and near all of it to 0.1 %, where 0 or 100 would be untrue. */
+export function formatChance(sharePct: number, locale: Locale): string {
+  const isNearEnd = sharePct < 0.95 || sharePct >= 99.05;
+  const isEnd = sharePct === 0 || sharePct === 100;
+  return `${formatNumber(sharePct, isNearEnd && !isEnd ? 1 : 0, locale)}\u00a0%`;
+}

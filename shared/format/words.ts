@@ -1,11 +1,41 @@
 import type { Locale } from "../i18n/index";
 
-/** A label inside a sentence. German nouns keep their capital, so that German keeps all of it. */
+/** German words that labels begin with and that are no nouns: only these lose their capital inside a sentence. */
+const NO_NOUNS: ReadonlySet<string> = new Set([
+  "Abgeschlossen",
+  "Darunter",
+  "Darüber",
+  "Erledigt",
+  "In",
+  "Kein",
+  "Neu",
+  "Nicht",
+  "Noch",
+  "Oberer",
+  "Ohne",
+  "Passt",
+  "Schützt",
+  "Unter",
+  "Unterer",
+  "Wieder",
+  "Zwei",
+  "Über",
+]);
+
+/** A label inside a sentence: without its capital, unless it begins with a German noun. */
 export function withinSentence(text: string, locale: Locale | string): string {
-  return locale === "en" ? text.charAt(0).toLocaleLowerCase("en") + text.slice(1) : text;
+  const [first = ""] = text.split(" ", 1);
+  return locale === "en" || NO_NOUNS.has(first)
+    ? text.charAt(0).toLocaleLowerCase(locale) + text.slice(1)
+    : text;
 }
 
 /** The same text at the start of a sentence. */
 export function startsSentence(text: string): string {
   return text.charAt(0).toLocaleUpperCase() + text.slice(1);
+}
+
+/** What somebody typed, inside a sentence that ends by itself: without a stop of its own. */
+export function withoutStop(text: string): string {
+  return text.trim().replace(/\.+$/, "");
 }

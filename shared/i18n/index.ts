@@ -1,4 +1,5 @@
 import { type I18n, type Messages, setupI18n } from "@lingui/core";
+import { isolateValues } from "./isolate";
 
 export const LOCALES = ["en", "de"] as const;
 export type Locale = (typeof LOCALES)[number];
@@ -46,7 +47,14 @@ const CATALOGUES: Readonly<
   mail: { en: () => import("./mail-en"), de: () => import("./mail-de") },
 };
 
-const loadedParts = new WeakMap<I18n, Set<CataloguePart>>();
+/** The parts that an i18n object has or is getting, each with its loading: whoever asks again waits for the same one. */
+const partsOf = new WeakMap<I18n, Map<CataloguePart, Promise<void>>>();
+
+function partsIn(i18n: I18n): Map<CataloguePart, Promise<void>> {
+  const parts = partsOf.get(i18n) ?? new Map<CataloguePart, Promise<void>>();
+  partsOf.set(i18n, parts);
+  return parts;
+}
 
 async function loadMessages(locale: Locale, parts: Iterable<CataloguePart>): Promise<Messages> {
   const catalogues = await Promise.all([...parts].map((part) => CATALOGUES[part][locale]()));
@@ -61,21 +69,43 @@ export async function createI18n(
   const i18n = setupI18n({ locale, messages: { [locale]: await loadMessages(locale, parts) } });
   // English text without anything to fill in is left out of the compiled catalogue: it is its own id.
   i18n.setMessagesCompiler((text) => [text]);
-  loadedParts.set(i18n, new Set(parts));
+  isolateValues(i18n);
+  for (const part of parts) partsIn(i18n).set(part, Promise.resolve());
   return i18n;
 }
 
 /** Adds a part of the catalogue to an i18n object in use; once it is there, this costs nothing. */
-export async function addCatalogue(i18n: I18n, part: CataloguePart): Promise<void> {
-  const parts = loadedParts.get(i18n) ?? new Set<CataloguePart>();
-  if (parts.has(part)) return;
-  // `load` merges into what is there.
-  if (isLocale(i18n.locale)) i18n.load(i18n.locale, await loadMessages(i18n.locale, [part]));
-  loadedParts.set(i18n, parts.add(part));
+export function addCatalogue(i18n: I18n, part: CataloguePart): Promise<void> {
+  const parts = partsIn(i18n);
+  const known = parts.get(part);
+  if (known) return known;
+  // Marked before it is there, so that a change of language meanwhile takes it along.
+  const loading = loadPart(i18n, part).catch((error: unknown) => {
+    parts.delete(part);
+    throw error;
+  });
+  parts.set(part, loading);
+  return loading;
 }
 
-/** Puts another language into an i18n object in use, with all parts that it had. */
+/** Loads a part in the language that is active once it has come, and not in the one that was when it was asked for. */
+async function loadPart(i18n: I18n, part: CataloguePart): Promise<void> {
+  let locale: string;
+  do {
+    locale = i18n.locale;
+    // `load` merges into what is there.
+    if (isLocale(locale)) i18n.load(locale, await loadMessages(locale, [part]));
+  } while (i18n.locale !== locale);
+}
+
+/** Puts another language into an i18n object in use, with all parts that it has, those asked for meanwhile among them. */
 export async function activateLocale(i18n: I18n, locale: Locale): Promise<void> {
-  const parts = loadedParts.get(i18n) ?? ["base"];
-  i18n.loadAndActivate({ locale, messages: await loadMessages(locale, parts) });
+  const parts = partsIn(i18n);
+  let loaded: CataloguePart[];
+  let messages: Messages;
+  do {
+    loaded = parts.size > 0 ? [...parts.keys()] : ["base"];
+    messages = await loadMessages(locale, loaded);
+  } while ([...parts.keys()].some((part) => !loaded.includes(part)));
+  i18n.loadAndActivate({ locale, messages });
 }

@@ -13,14 +13,19 @@ function sizeText(i18n: I18n, { code, params }: FieldIssue): string {
   const minimum = Number(params.minimum);
   const maximum = Number(params.maximum);
   if (code === "too_small") {
-    if (params.origin === "array") return i18n.t("At least one is needed.");
+    if (params.origin === "array")
+      return minimum <= 1
+        ? i18n.t("At least one is needed.")
+        : i18n.t("All {minimum} values are needed.", { minimum });
     if (isText(params))
       return minimum <= 1
         ? i18n.t("This is needed.")
         : i18n.t("At least {minimum, plural, one {# character} other {# characters}}.", {
             minimum,
           });
-    return i18n.t("At least {minimum}.", { minimum });
+    return String(params.inclusive) === "false"
+      ? i18n.t("More than {minimum}.", { minimum })
+      : i18n.t("At least {minimum}.", { minimum });
   }
   if (params.origin === "array") return i18n.t("These are too many.");
   if (isText(params))
@@ -59,6 +64,7 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
     case "required":
       return i18n.t("This is needed.");
     case "invalid_type":
+      if (params.expected === "object") return i18n.t("An object with named members is needed.");
       return params.expected === "number" || params.expected === "int"
         ? i18n.t("A number is needed.")
         : i18n.t("This is needed.");
@@ -132,6 +138,18 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("A standard deviation can’t be negative.");
     case "band-missing":
       return i18n.t("Mean and deviation of a band belong together.");
+    case "bands-backwards":
+      return i18n.t(
+        "No protector takes so much more off low frequencies than off high ones. The bands may stand in the wrong order: 63 or 125 Hz comes first.",
+      );
+    case "active-at-8-khz":
+      return i18n.t(
+        "No active part takes anything off at 8 kHz. Enter 0 there, or the bandwidth at which it ends.",
+      );
+    case "few-below-most":
+      return i18n.t(
+        "What few users reach can’t be less than what most users reach. The two may be swapped.",
+      );
     case "delay-and-gain-together":
       return i18n.t("Delay and gain belong together: both, or none.");
     case "reason-needed":
@@ -154,6 +172,8 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("This date lies more than a year ahead.");
     case "rule-set-not-in-force":
       return i18n.t("This rule set was not in force on that day.");
+    case "rule-set-unknown":
+      return i18n.t("There is no such rule set.");
     case "rule-set-twice":
       return i18n.t("A rule set stands here twice.");
     case "task-of-other-site":
@@ -186,6 +206,16 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       );
     case "run-too-short":
       return i18n.t("The run is shorter than was wanted of it. Say why it is kept.");
+    case "field-check-missing":
+      return i18n.t("A field check is missing. Enter it, or say why the run is kept.");
+    case "outside-shift":
+      return i18n.t(
+        "The run lies outside the worker’s shift. Choose that it is only evidence, or say why it is kept.",
+      );
+    case "shorter-than-shift":
+      return i18n.t(
+        "The run is clearly shorter than the shift. Choose that it covers a part, or say why it is kept.",
+      );
     case "clipped":
     case "under-range":
       return i18n.t("The instrument was overloaded, or under its range. Say why the run is kept.");
@@ -209,8 +239,19 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("This row says nothing yet. Type a figure, or take the row out.");
     case "in-the-future":
       return i18n.t("This date lies ahead.");
+    case "look-twice":
+      return i18n.t("This worker is in this round with this task already.");
+    case "more-worn-than-seen":
+      return i18n.t("More times worn than seen.");
+    case "before-issue":
+      return i18n.t("The device was handed out later than that.");
     case "shift-of-another-day":
       return i18n.t("That shift is another worker’s or another day’s.");
+    case "open-end-unconfirmed":
+      return i18n.t(
+        "This shift ends at {time}, which lies ahead. Save it once it is over, or confirm that it will end so.",
+        { time: params.time },
+      );
     case "whole-day-unconfirmed":
       return i18n.t("A shift of exactly 24 hours: confirm it below.");
     case "protector-archived":
@@ -257,6 +298,30 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("Say whose history it is.");
     case "run-of-other-instrument":
       return i18n.t("That run was made with another instrument.");
+    case "above-bone-conduction":
+      return i18n.t("More than the skull lets anybody have: this was not measured so.");
+    case "no-trial":
+      return i18n.t("At least one trial of one ear is needed.");
+    case "size-unknown":
+      return i18n.t("This protector does not come in that size.");
+    case "one-kind-offered":
+      return i18n.t("Only one kind was on offer. Offer another, or say why not.");
+    case "none-in-stock":
+      return i18n.t("None of this size is in stock. Say why it goes out all the same.");
+    case "issued-not-offered":
+      return i18n.t("What is handed out has to be among what was offered.");
+    case "fit-of-another":
+      return i18n.t("That fit is another worker’s, another protector’s or another size’s.");
+    case "one-part-off":
+      return i18n.t("One pair with the active part off is needed, and at most one with it on.");
+    case "channel-named-twice":
+      return i18n.t("The same channel stands for two microphones.");
+    case "task-has-no-spectrum":
+      return i18n.t("This task’s level has no octave bands.");
+    case "not-the-other-ear":
+      return i18n.t("That test is not the other ear’s of the same day and protector.");
+    case "tone-unknown":
+      return i18n.t("There is no tone of this channel.");
     default:
       return i18n.t("This needs another look.");
   }

@@ -127,6 +127,8 @@ export const FindingView = FindingRow.extend({
       at: z.string().nullable(),
     }),
   ),
+  /** Why nobody is told; null where somebody is. */
+  untold: z.enum(["not-by-mail", "corrected", "long-ago", "no-address"]).nullable(),
 });
 export type FindingView = z.infer<typeof FindingView>;
 

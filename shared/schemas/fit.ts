@@ -226,6 +226,8 @@ export const IssueView = z.object({
   issuedOn: IsoDate,
   offered: z.array(z.string()),
   wasInstructed: z.boolean(),
+  /** Why only one kind was on offer, or it went out with none in stock; null unless the reader is an officer. */
+  reason: z.string().nullable(),
   acknowledgedHow: z.enum(["in-person", "own-page"]).nullable(),
   endedOn: IsoDate.nullable(),
   endedHow: IssueEnd.shape.how.nullable(),
@@ -235,6 +237,12 @@ export const IssueView = z.object({
 });
 export type IssueView = z.infer<typeof IssueView>;
 export const IssuePage = pageOf(IssueView);
+export const IssueFilter = PageQuery.extend({
+  siteId: z.uuid().optional(),
+  workerId: z.uuid().optional(),
+  /** `open`: those that are still out. */
+  state: z.enum(["open", "all"]).default("all"),
+});
 
 export const RefusalInput = z.object({
   modelId: z.uuid().nullable().default(null),
@@ -249,6 +257,26 @@ export const RefusalView = RefusalInput.extend({
   modelName: z.string().nullable(),
   authorName: z.string().nullable(),
 });
+
+export const RefusalList = z.object({ rows: z.array(RefusalView) });
+/** What is answered to whoever enters one: its reason stands in its own table and nowhere else. */
+export const RefusalSaved = z.object({ id: z.uuid() });
+
+/** Who stands at the desk: by employee number, or by name where no number is meant. */
+export const FittingLookup = z.object({ employeeNumber: z.string().trim().min(1).max(100) });
+export const FittingFound = z.object({
+  rows: z.array(
+    z.object({
+      id: z.uuid(),
+      name: z.string(),
+      employeeNumber: z.string(),
+      siteName: z.string(),
+      /** The number is the one that was asked for. */
+      isExact: z.boolean(),
+    }),
+  ),
+});
+export type FittingFound = z.infer<typeof FittingFound>;
 
 /** A group's own fits of one model beside its label. */
 export const FitDistribution = z.object({

@@ -58,6 +58,10 @@ export const GroupBudgetView = z.object({
   reason: z.string().nullable(),
   lackingTaskIds: z.array(z.uuid()),
   keptReasons: z.array(z.string()),
+  /** Samples under an instrument's range that enter with the level they stayed under. */
+  belowRangeCount: z.number(),
+  /** A survey's, and the same as with the levels in force. */
+  isAsInForce: z.boolean(),
 });
 export type GroupBudgetView = z.infer<typeof GroupBudgetView>;
 
@@ -108,6 +112,19 @@ export const GroupStatistics = z.object({
 });
 export type GroupStatistics = z.infer<typeof GroupStatistics>;
 
+/** What samples say in one quantity: LEX,8h, or the TWA of a dose by one exchange rate and threshold. */
+export const GroupBlock = z.object({
+  quantity: z.enum(["lex-8h", "dose", "table-dose"]),
+  /** Of a dose; null for LEX,8h. */
+  exchangeRateDb: z.number().nullable(),
+  thresholdDb: z.number().nullable(),
+  /** Days of which only a lower bound is known, and so can't be counted here. */
+  leftOutCount: z.number(),
+  /** Null: no sample. */
+  statistics: GroupStatistics.nullable(),
+});
+export type GroupBlock = z.infer<typeof GroupBlock>;
+
 export const GroupView = z.object({
   jobId: z.uuid(),
   jobName: z.string(),
@@ -115,8 +132,6 @@ export const GroupView = z.object({
   siteName: z.string(),
   workersCount: z.number(),
   ruleSetTitle: z.string(),
-  /** What a sample's level is judged as: an 8-hour level, or a dose's. */
-  quantity: z.string(),
   nominalDay: z.array(
     z.object({
       taskId: z.uuid(),
@@ -132,11 +147,13 @@ export const GroupView = z.object({
   basis: z.object({
     surveyId: z.uuid().nullable(),
     fromDate: IsoDate.nullable(),
-    /** Results that only say from where on a level lies, and so can't be counted here. */
+    /** Samples of the survey that do not count. */
     leftOutCount: z.number(),
     keptReasons: z.array(z.string()),
   }),
-  /** Null: no sample yet. */
-  statistics: GroupStatistics.nullable(),
+  /** A survey's energy levels under rules that count doses: no share above their values can be stated. */
+  isOtherQuantity: z.boolean(),
+  /** One for each quantity that the rules judge a day without protection by; of a survey LEX,8h alone. */
+  blocks: z.array(GroupBlock).min(1),
 });
 export type GroupView = z.infer<typeof GroupView>;

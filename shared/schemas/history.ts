@@ -16,56 +16,61 @@ export type HistoryChannel = z.infer<typeof HistoryChannel>;
 
 const Delimiter = z.enum([",", ";", "\t", "|", " "]);
 
+const Levels = z
+  .array(
+    z.object({
+      column: z.number().int().min(0).max(500),
+      channel: HistoryChannel,
+      /** dB; tenths of a decibel; pascals. */
+      unit: z.enum(["dB", "dB/10", "Pa"]).default("dB"),
+    }),
+  )
+  .max(7);
+const MappingFacts = z.object({
+  /** Worksheet of a workbook; null: the first. */
+  sheet: z.string().max(120).nullable().default(null),
+  delimiter: Delimiter.default(","),
+  /** Lines before the first values, the head line among them. */
+  skipLines: z.number().int().min(0).max(200),
+  decimal: z.enum([".", ","]),
+  /** A date and a time in two columns, or both in one, or seconds since the start. */
+  time: z.discriminatedUnion("kind", [
+    z.object({ kind: z.literal("date-time"), column: z.number().int().min(0).max(500) }),
+    z.object({
+      kind: z.literal("date-and-time"),
+      dateColumn: z.number().int().min(0).max(500),
+      timeColumn: z.number().int().min(0).max(500),
+    }),
+    z.object({ kind: z.literal("time-of-day"), column: z.number().int().min(0).max(500) }),
+    z.object({
+      kind: z.literal("elapsed"),
+      column: z.number().int().min(0).max(500),
+      unit: z.enum(["s", "ms", "hh:mm:ss"]),
+    }),
+  ]),
+  /** Order of the parts of a date. */
+  dateOrder: z.enum(["ymd", "dmy", "mdy"]).default("ymd"),
+  /** Start of the first interval where the file does not say the date: local date and time. */
+  startsAt: z.string().max(40).nullable().default(null),
+  /** What the file's clock showed: the site's own time, or UTC. */
+  clock: z.enum(["site", "utc"]).default("site"),
+  levels: Levels.min(1),
+  /** Text that marks a value over or under the range. */
+  overRange: z.array(z.string().min(1).max(20)).max(10).default([]),
+  underRange: z.array(z.string().min(1).max(20)).max(10).default([]),
+});
 /** How an instrument's export is to be read; kept per instrument. Columns are counted from 0. */
-export const HistoryMapping = z
-  .object({
-    /** Worksheet of a workbook; null: the first. */
-    sheet: z.string().max(120).nullable().default(null),
-    delimiter: Delimiter.default(","),
-    /** Lines before the first values, the head line among them. */
-    skipLines: z.number().int().min(0).max(200),
-    decimal: z.enum([".", ","]),
-    /** A date and a time in two columns, or both in one, or seconds since the start. */
-    time: z.discriminatedUnion("kind", [
-      z.object({ kind: z.literal("date-time"), column: z.number().int().min(0).max(500) }),
-      z.object({
-        kind: z.literal("date-and-time"),
-        dateColumn: z.number().int().min(0).max(500),
-        timeColumn: z.number().int().min(0).max(500),
-      }),
-      z.object({ kind: z.literal("time-of-day"), column: z.number().int().min(0).max(500) }),
-      z.object({
-        kind: z.literal("elapsed"),
-        column: z.number().int().min(0).max(500),
-        unit: z.enum(["s", "ms", "hh:mm:ss"]),
-      }),
-    ]),
-    /** Order of the parts of a date. */
-    dateOrder: z.enum(["ymd", "dmy", "mdy"]).default("ymd"),
-    /** Start of the first interval where the file does not say the date: local date and time. */
-    startsAt: z.string().max(40).nullable().default(null),
-    /** What the file's clock showed: the site's own time, or UTC. */
-    clock: z.enum(["site", "utc"]).default("site"),
-    levels: z
-      .array(
-        z.object({
-          column: z.number().int().min(0).max(500),
-          channel: HistoryChannel,
-          /** dB; tenths of a decibel; pascals. */
-          unit: z.enum(["dB", "dB/10", "Pa"]).default("dB"),
-        }),
-      )
-      .min(1)
-      .max(7),
-    /** Text that marks a value over or under the range. */
-    overRange: z.array(z.string().min(1).max(20)).max(10).default([]),
-    underRange: z.array(z.string().min(1).max(20)).max(10).default([]),
-  })
-  .refine(({ levels }) => new Set(levels.map(({ channel }) => channel)).size === levels.length, {
+export const HistoryMapping = MappingFacts.refine(
+  ({ levels }) => new Set(levels.map(({ channel }) => channel)).size === levels.length,
+  {
     path: ["levels"],
     params: { code: "channel-twice" },
-  });
+  },
+);
 export type HistoryMapping = z.infer<typeof HistoryMapping>;
+/** What was recognised in a file: its time at least, and the levels whose heads say what they are. */
+export const ProposedMapping = MappingFacts.extend({ levels: Levels });
+export type ProposedMapping = z.infer<typeof ProposedMapping>;
 
 /** Beginning of a file and what was recognised in it. */
 export const HistoryHead = z.object({
@@ -76,7 +81,7 @@ export const HistoryHead = z.object({
   lines: z.array(z.array(z.string())),
   delimiter: Delimiter.optional(),
   /** A mapping that fits what was seen; null where nothing did. */
-  proposed: HistoryMapping.nullable(),
+  proposed: ProposedMapping.nullable(),
   /** Where the proposal comes from: remembered for the instrument, or recognised in the file. */
   proposedFrom: z.enum(["instrument", "file"]).nullable(),
 });
@@ -164,6 +169,15 @@ export const HistoryImportView = z.object({
   answers: z.array(z.string()),
   /** The site's zone, in which the file's clock is read. */
   timeZone: z.string(),
+  /** The worker's shift that it speaks for, once its times are known; null where none is. */
+  shift: z
+    .object({
+      from: z.string(),
+      to: z.string(),
+      shiftMin: z.number(),
+      insideMin: z.number().nullable(),
+    })
+    .nullable(),
   historyId: z.uuid().nullable(),
   authorName: z.string().nullable(),
   createdAt: z.string(),
@@ -171,7 +185,9 @@ export const HistoryImportView = z.object({
   can: Can("change"),
 });
 export type HistoryImportView = z.infer<typeof HistoryImportView>;
-export const HistoryImportPage = pageOf(HistoryImportView.omit({ head: true, report: true }));
+export const HistoryImportPage = pageOf(
+  HistoryImportView.omit({ head: true, report: true, shift: true }),
+);
 export const HistoryImportFilter = PageQuery.extend({ siteId: z.uuid().optional() });
 /** Read it by this mapping: a report, nothing stored. `answers`: codes of what was asked and is accepted. */
 export const HistoryReadOrder = z.object({
@@ -235,6 +251,9 @@ export const HistoryView = z.object({
   keptReason: z.string().nullable(),
   isVoid: z.boolean(),
   revision: z.number(),
+  /** Who drew what stands, or brought the history in, and when. */
+  authorName: z.string().nullable(),
+  savedAt: z.string(),
   can: Can("change"),
 });
 export type HistoryView = z.infer<typeof HistoryView>;
@@ -275,21 +294,20 @@ const LevelFigure = z.object({
   levelDb: z.number(),
   bound: z.enum(["exact", "upper", "lower"]),
 });
+const TaskFigures = z.object({
+  durationS: z.number(),
+  laeqDb: z.number().nullable(),
+  /** Under the first of the readings, percent, and its share in the whole. */
+  dosePct: z.number().nullable(),
+  sharePct: z.number().nullable(),
+});
 /** What a history comes to: with the stretches left out, and with everything counted. */
 export const HistoryAnalysis = z.object({
   counted: Evaluated,
   everything: Evaluated,
-  tasks: z.array(
-    z.object({
-      taskId: z.uuid(),
-      taskName: z.string(),
-      durationS: z.number(),
-      laeqDb: z.number().nullable(),
-      /** Share in the dose under the governing rule, percent. */
-      dosePct: z.number().nullable(),
-      sharePct: z.number().nullable(),
-    }),
-  ),
+  tasks: z.array(TaskFigures.extend({ taskId: z.uuid(), taskName: z.string() })),
+  /** What counts and lies under no bracket; null where none is drawn, or nothing is left. */
+  rest: TaskFigures.nullable(),
   distribution: z.array(z.object({ fromDb: z.number(), sharePct: z.number() })),
   /** Dose so far at the end of each bucket, percent, per criterion. */
   runningDose: z.array(

@@ -36,6 +36,8 @@ export const EntryNotices = z.object({
   state: z.enum(["none", "waiting", "held", "sent", "part"]),
   people: z.number(),
   notices: z.array(NoticeRow),
+  /** When a later entry's notice that replaces one of these last left; null: none has. */
+  correctedAt: z.string().nullable(),
 });
 export type EntryNotices = z.infer<typeof EntryNotices>;
 

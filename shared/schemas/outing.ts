@@ -2,25 +2,6 @@ import { z } from "zod";
 import { Can, IsoDate, LevelDb, Name, Reason } from "./common";
 import { OctaveBands, ReadingFacts } from "./evaluation";
 
-/** An instrument goes out: on a worker, or to a place. Its settings are those of its preset. */
-export const OutingStart = z.object({
-  instrumentId: z.uuid(),
-  workerId: z.uuid().nullable().default(null),
-  areaId: z.uuid().nullable().default(null),
-  surveyId: z.uuid().nullable().default(null),
-  date: IsoDate,
-  /** ISO instant. */
-  outAt: z.iso.datetime({ offset: true }),
-  checkBeforeDb: z.number().min(70).max(130).nullable().default(null),
-  /** Why it goes out in spite of a certificate that is out of date. */
-  keptReason: Reason.nullable().default(null),
-});
-export type OutingStart = z.infer<typeof OutingStart>;
-
-/** A run that was started by mistake is taken back with a reason. */
-export const OutingUndo = z.object({ reason: Reason });
-export type OutingUndo = z.infer<typeof OutingUndo>;
-
 export const OutingReturn = z.object({
   /** ISO instant until which it was worn. */
   backAt: z.iso.datetime({ offset: true }),
@@ -39,6 +20,27 @@ export const OutingReturn = z.object({
 });
 export type OutingReturn = z.infer<typeof OutingReturn>;
 
+/** An instrument goes out: on a worker, or to a place. Its settings are those of its preset. */
+export const OutingStart = z.object({
+  instrumentId: z.uuid(),
+  workerId: z.uuid().nullable().default(null),
+  areaId: z.uuid().nullable().default(null),
+  surveyId: z.uuid().nullable().default(null),
+  date: IsoDate,
+  /** ISO instant. */
+  outAt: z.iso.datetime({ offset: true }),
+  checkBeforeDb: z.number().min(70).max(130).nullable().default(null),
+  /** Why it goes out in spite of a certificate that is out of date. */
+  keptReason: Reason.nullable().default(null),
+  /** Of a day gone by: it has come back since, and goes down as one run. */
+  back: OutingReturn.omit({ discardReason: true }).nullable().default(null),
+});
+export type OutingStart = z.infer<typeof OutingStart>;
+
+/** A run that was started by mistake is taken back with a reason. */
+export const OutingUndo = z.object({ reason: Reason });
+export type OutingUndo = z.infer<typeof OutingUndo>;
+
 /** A row of Out and back: one instrument of the site, what it is doing and what it did today. */
 export const OutingRow = z.object({
   instrumentId: z.uuid(),
@@ -47,6 +49,8 @@ export const OutingRow = z.object({
   kind: z.string(),
   class: z.string(),
   calibrationDueOn: IsoDate.nullable(),
+  /** A calibration that it failed and that none has followed. */
+  calibrationFailedOn: IsoDate.nullable(),
   presets: z.array(ReadingFacts.shape.settings),
   /** Reserved for today by a survey. */
   reservedFor: z.object({ surveyId: z.uuid(), surveyName: z.string() }).nullable(),
@@ -89,6 +93,8 @@ export const OutingQuery = z.object({ date: IsoDate.optional() });
 
 /** A worker's shift has been over for this long when an instrument comes back: was it worn until then? No source. */
 export const LATE_RETURN_MIN = 30;
+/** Longer than any shift: a time before the one at which it went out is the next day's. No source. */
+export const LONG_OUTING_MIN = 16 * 60;
 export const isLateReturn = (backAt: string, expectedBackAt: string | null): boolean =>
   expectedBackAt !== null &&
   Date.parse(backAt) - Date.parse(expectedBackAt) > LATE_RETURN_MIN * 60_000;

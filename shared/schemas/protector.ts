@@ -1,13 +1,19 @@
 import { z } from "zod";
+import { activeAttenuationDb } from "../acoustics/protection/active";
+import type { ActivePart, OctaveBandValues } from "../acoustics/types";
 import { Can, IsoDate, Name, Reason } from "./common";
 import { ProtectorFacts, ProtectorKindName } from "./evaluation";
 import { Size } from "./fit";
 
 type Context = { value: z.infer<typeof ProtectorFacts>; issues: unknown[] };
 
-/** What a certificate can't say: an SNR below its L, a deviation below zero. */
-function plausible(context: Context): void {
-  const { snrDb, lDb, hDb, mDb, bands, active } = context.value;
+/** No passive protector takes this much more off at 125 Hz than at 4 and 8 kHz: the bands stand backwards, dB. */
+const FALLS_BY_DB = 10;
+const HIGHEST_BAND = 7;
+
+/** What a certificate can't say: an SNR below its L, a deviation below zero, an active part that works at 8 kHz. */
+export function plausible(context: Context): void {
+  const { snrDb, lDb, hDb, mDb, bands, active, percentile, usLabel } = context.value;
   const add = (path: (string | number)[], code: string) =>
     context.issues.push({ code: "custom", input: context.value, path, params: { code } });
   if (snrDb !== null && lDb !== null && snrDb < lDb) add(["snrDb"], "snr-below-l");
@@ -20,8 +26,28 @@ function plausible(context: Context): void {
     add(["bands", "sdDb"], "deviation-negative");
   if (bands && (bands.meanDb[0] === null) !== (bands.sdDb[0] === null))
     add(["bands", "sdDb", 0], "band-missing");
+  if (bands && isBackwards(bands.meanDb)) add(["bands", "meanDb"], "bands-backwards");
+  if (usLabel?.sdDb.some((value) => value < 0)) add(["usLabel", "sdDb"], "deviation-negative");
+  if (percentile && percentile.fewDb < percentile.mostDb)
+    add(["percentile", "fewDb"], "few-below-most");
   if (active && (active.delayS === null) !== (active.gain === null))
     add(["active", "gain"], "delay-and-gain-together");
+  if (active && claimsHighestBand(active))
+    add(
+      active.attenuationDb === null
+        ? ["active", "bandwidthHz"]
+        : ["active", "attenuationDb", HIGHEST_BAND],
+      "active-at-8-khz",
+    );
+}
+
+const isBackwards = ([, at125, , , , , at4000, at8000]: OctaveBandValues): boolean =>
+  at125 - Math.max(at4000, at8000) > FALLS_BY_DB;
+
+/** By its report, or by a delay and a gain with no bandwidth that ends before. */
+function claimsHighestBand(active: ActivePart): boolean {
+  const claimedDb = active.attenuationDb ?? activeAttenuationDb(active);
+  return (claimedDb?.[HIGHEST_BAND] ?? 0) > 0;
 }
 
 /** What a certificate says beside its numbers. */

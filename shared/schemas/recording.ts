@@ -6,7 +6,7 @@ export const RECORDING_LIMIT_BYTES = 4 * 1024 ** 3;
 /** A calibrator's tone lasts a minute at most. */
 export const TONE_LIMIT_BYTES = 100 * 1024 ** 2;
 
-/** Why a recording cannot be used, or not without somebody's word for it. Texts are the client's. */
+/** Why a recording cannot be used, or not without somebody's word for it. Texts: shared/recordings. */
 export const RECORDING_CODES = [
   "recording-not-wav",
   "recording-header-damaged",
@@ -17,6 +17,8 @@ export const RECORDING_CODES = [
   "recording-empty",
   "recording-length-unstated",
   "recording-truncated",
+  "recording-longer",
+  "recording-not-numbers",
   "recording-silent",
   "recording-clipped",
   "tone-not-found",
@@ -29,6 +31,7 @@ export type RecordingCode = (typeof RECORDING_CODES)[number];
 export const ACCEPTABLE_FAULTS = [
   "recording-length-unstated",
   "recording-truncated",
+  "recording-longer",
   "recording-clipped",
 ] as const satisfies readonly RecordingCode[];
 export type AcceptableFault = (typeof ACCEPTABLE_FAULTS)[number];
@@ -139,12 +142,20 @@ export const RecordingForm = z
   });
 export type RecordingForm = z.infer<typeof RecordingForm>;
 
-export const ToneForm = z.object({
-  taskId: z.uuid(),
-  toneDb: z.coerce.number().min(70).max(130),
-  frequencyHz: z.coerce.number().min(100).max(4000).default(1000),
-  file: FormFile,
-});
+export const ToneForm = z
+  .object({
+    /** The task that is recorded, or the site where nobody's task is. */
+    taskId: z.uuid().optional(),
+    siteId: z.uuid().optional(),
+    toneDb: z.coerce.number().min(70).max(130),
+    frequencyHz: z.coerce.number().min(100).max(4000).default(1000),
+    file: FormFile,
+  })
+  .refine(({ taskId, siteId }) => (taskId === undefined) !== (siteId === undefined), {
+    path: ["taskId"],
+    params: { code: "required" },
+  });
+export type ToneForm = z.infer<typeof ToneForm>;
 
 export const RecordingFaults = z.object({
   accept: z.array(z.enum(ACCEPTABLE_FAULTS)).min(1).max(ACCEPTABLE_FAULTS.length),

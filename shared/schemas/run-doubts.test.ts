@@ -1,5 +1,5 @@
 import { describe, expect, test } from "vitest";
-import { type DoubtfulFacts, findRunDoubts } from "./run-doubts";
+import { type DoubtfulFacts, findRunDoubts, likelyCovers } from "./run-doubts";
 
 const sound: DoubtfulFacts = {
   checkBeforeDb: 94.0,
@@ -8,6 +8,9 @@ const sound: DoubtfulFacts = {
   calibration: { dueOn: "2026-03-02", failedOn: null },
   durationMin: 5,
   leastMin: 5,
+  needsChecks: false,
+  covers: "shift",
+  shift: null,
   shown: [],
 };
 const codes = (facts: Partial<DoubtfulFacts>) =>
@@ -65,4 +68,49 @@ test("a run may not be shorter than what is asked for; while it is out it has no
 
 test("what the instrument showed is a doubt each", () => {
   expect(codes({ shown: ["clipped", "under-range"] })).toEqual(["clipped", "under-range"]);
+});
+
+describe("a run and the shift that it speaks for", () => {
+  const eight = { from: "14:00", to: "22:00", shiftMin: 480 };
+
+  // Nine tenths of the time at one level are 10 lg 0.9 = −0.46 dB of the shift's energy.
+  test.each([
+    [432, []],
+    [431, ["shorter-than-shift"]],
+    [60, ["shorter-than-shift"]],
+  ])("%i min of eight hours", (durationMin, found) => {
+    expect(codes({ durationMin, shift: { ...eight, insideMin: durationMin } })).toEqual(found);
+    expect(codes({ durationMin, shift: { ...eight, insideMin: null } })).toEqual(found);
+  });
+
+  test("an hour in the morning says nothing about an afternoon's shift", () => {
+    const morning = { durationMin: 60, shift: { ...eight, insideMin: 0 } };
+    expect(codes(morning)).toEqual(["outside-shift"]);
+    expect(codes({ ...morning, covers: "projected" })).toEqual(["outside-shift"]);
+    // Only evidence: it does not govern.
+    expect(codes({ ...morning, covers: "part" })).toEqual([]);
+  });
+
+  test("worn for eight hours of which six lie in the shift, it covers six", () => {
+    const late = { durationMin: 480, shift: { ...eight, insideMin: 360 } };
+    expect(codes(late)).toEqual(["shorter-than-shift"]);
+    expect(codes({ ...late, covers: "projected" })).toEqual([]);
+  });
+
+  test("what it most likely covers follows from overlap and length", () => {
+    expect(likelyCovers({ ...eight, insideMin: 470 }, 470)).toBe("shift");
+    expect(likelyCovers({ ...eight, insideMin: 60 }, 60)).toBe("part");
+    expect(likelyCovers({ ...eight, insideMin: 0 }, 60)).toBe("part");
+    expect(likelyCovers(null, 480)).toBeNull();
+  });
+});
+
+test("a field check that is missing is asked about once the run is over", () => {
+  const sample = { needsChecks: true };
+  expect(codes({ ...sample, checkAfterDb: null })).toEqual(["field-check-missing"]);
+  expect(codes({ ...sample, checkBeforeDb: null, checkAfterDb: null })).toEqual([
+    "field-check-missing",
+  ]);
+  expect(codes({ ...sample, checkAfterDb: null, durationMin: null })).toEqual([]);
+  expect(codes({ checkAfterDb: null })).toEqual([]);
 });

@@ -10,6 +10,12 @@ export const CALIBRATOR_LEVELS_DB = [94, 104, 114, 124] as const;
 /** The least that a sample of a task may last unless the task itself is shorter: ISO 9612:2009, 9.3, from memory. */
 export const LEAST_SAMPLE_MIN = 5;
 
+/**
+ * A run that covers the shift lasts at least this share of it: what is missing then takes off 0.5 dB at most (10 lg 0.9),
+ * no more than field checks may drift. No source.
+ */
+export const SHIFT_COVERED_SHARE = 0.9;
+
 /** Binary fractions of tenths: 94.5 − 94.0 is not exactly 0.5. */
 const EPSILON = 1e-9;
 
@@ -17,9 +23,12 @@ const EPSILON = 1e-9;
 export const RUN_DOUBTS = [
   "field-check-drift",
   "field-check-mistyped",
+  "field-check-missing",
   "calibration-out-of-date",
   "calibration-failed",
   "run-too-short",
+  "outside-shift",
+  "shorter-than-shift",
   "clipped",
   "under-range",
 ] as const;
@@ -38,7 +47,20 @@ export interface CalibrationState {
   readonly failedOn: string | null;
 }
 
+/** The shift that a run speaks for: as recorded, or the crew's usual one. */
+export interface FacedShift {
+  /** Local times, "14:00". */
+  readonly from: string;
+  readonly to: string;
+  /** Elapsed minutes. */
+  readonly shiftMin: number;
+  /** Minutes of the run that lie in it; null where only the run's length is known. */
+  readonly insideMin: number | null;
+}
+
 export interface DoubtfulFacts {
+  /** Field checks belong to the run: a sample, or an instrument that went out. */
+  readonly needsChecks: boolean;
   readonly checkBeforeDb: number | null;
   readonly checkAfterDb: number | null;
   /** ISO date of the run. */
@@ -48,6 +70,9 @@ export interface DoubtfulFacts {
   readonly durationMin: number | null;
   /** What was planned, or the least that the standard asks for; null where nothing is asked of the run's length. */
   readonly leastMin: number | null;
+  readonly covers: "shift" | "projected" | "part";
+  /** Null where no shift is known. */
+  readonly shift: FacedShift | null;
   /** What the instrument itself showed. */
   readonly shown: readonly ("clipped" | "under-range")[];
 }
@@ -81,18 +106,51 @@ function checkDoubt(beforeDb: number | null, afterDb: number | null): RunDoubt |
   return null;
 }
 
+/** Whether a run that governs the day lies in its shift, and covers as much of it as it says. */
+export function shiftDoubt({
+  covers,
+  shift,
+  durationMin,
+}: Pick<DoubtfulFacts, "covers" | "shift" | "durationMin">): RunDoubt | null {
+  if (shift === null || durationMin === null || covers === "part") return null;
+  const { from, to, shiftMin, insideMin } = shift;
+  if (insideMin === 0) return { code: "outside-shift", params: { from, to } };
+  const coveredMin = Math.min(durationMin, insideMin ?? durationMin);
+  return covers === "shift" && coveredMin < SHIFT_COVERED_SHARE * shiftMin - EPSILON
+    ? { code: "shorter-than-shift", params: { coveredMin, shiftMin } }
+    : null;
+}
+
+/** What a run most likely covers; null where no shift is known to judge by. */
+export function likelyCovers(
+  shift: FacedShift | null,
+  durationMin: number,
+): DoubtfulFacts["covers"] | null {
+  if (shift === null) return null;
+  return shiftDoubt({ covers: "shift", shift, durationMin }) === null ? "shift" : "part";
+}
+
 /** All that speaks against a run. None: it counts, under the standard's name. */
 export function findRunDoubts(facts: DoubtfulFacts): RunDoubt[] {
   const { checkBeforeDb, checkAfterDb, date, calibration, durationMin, leastMin, shown } = facts;
   const found: RunDoubt[] = [];
   const check = checkDoubt(checkBeforeDb, checkAfterDb);
   if (check) found.push(check);
+  // Before the end of a run its second check can't be missed.
+  else if (
+    facts.needsChecks &&
+    durationMin !== null &&
+    [checkBeforeDb, checkAfterDb].includes(null)
+  )
+    found.push({ code: "field-check-missing", params: {} });
   if (calibration.failedOn !== null)
     found.push({ code: "calibration-failed", params: { failedOn: calibration.failedOn } });
   else if (calibration.dueOn !== null && calibration.dueOn < date)
     found.push({ code: "calibration-out-of-date", params: { dueOn: calibration.dueOn } });
   if (durationMin !== null && leastMin !== null && durationMin < leastMin - EPSILON)
     found.push({ code: "run-too-short", params: { durationMin, leastMin } });
+  const ofShift = shiftDoubt(facts);
+  if (ofShift) found.push(ofShift);
   for (const code of shown) found.push({ code, params: {} });
   return found;
 }

@@ -16,6 +16,8 @@ export const InstrumentInput = z.object({
 export type InstrumentInput = z.infer<typeof InstrumentInput>;
 export const InstrumentView = InstrumentInput.extend({
   id: z.uuid(),
+  /** A calibration that it failed and that none has followed. */
+  calibrationFailedOn: IsoDate.nullable(),
   revision: z.number(),
   can: Can("change"),
 });
@@ -65,6 +67,9 @@ function plausible(context: Issues): void {
     calibration: { dueOn: null, failedOn: null },
     durationMin: null,
     leastMin: null,
+    needsChecks: false,
+    covers: "part",
+    shift: null,
     shown: [],
   });
   if (keptReason === null)

@@ -34,5 +34,5 @@ export const SignOutView = z.object({ redirectTo: z.string() });
 
 export const WorkerCodeInput = z.object({
   employeeNumber: z.string().trim().min(1).max(40),
-  code: z.string().trim().min(4).max(40),
+  code: z.string().trim().min(1).max(40),
 });

@@ -72,6 +72,8 @@ export const DayRowInput = z.discriminatedUnion("kind", [
     reason: Reason.nullable().default(null),
     /** A shift of exactly 24 hours is asked about once. */
     confirmsWholeDay: z.boolean().default(false),
+    /** A shift whose end still lies ahead is asked about once. */
+    confirmsOpenEnd: z.boolean().default(false),
     run: GridRunInput.nullable().default(null),
   }),
   z.object({ kind: z.literal("absent"), workerId: z.uuid() }),
@@ -248,6 +250,7 @@ export type DaySaveView = z.infer<typeof DaySaveView>;
 export const ShiftCorrection = ShiftFacts.extend({
   reason: Reason,
   confirmsWholeDay: z.boolean().default(false),
+  confirmsOpenEnd: z.boolean().default(false),
 }).check((context) => checkShiftFacts(context as unknown as Shape));
 export const ShiftVoid = z.object({ reason: Reason });
 

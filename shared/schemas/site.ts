@@ -1,5 +1,6 @@
 import { z } from "zod";
 import { Can, IsoDate, Language, Name, Reason } from "./common";
+import { FitPolicyInput } from "./fit";
 
 export const SiteSettingsFacts = z.object({
   effectiveFrom: IsoDate,
@@ -25,6 +26,7 @@ export const NewSiteInput = SiteInput.extend({ settings: SiteSettingsFacts });
 export const SiteView = SiteInput.extend({
   id: z.uuid(),
   revision: z.number(),
+  fitPolicy: FitPolicyInput,
   settings: SiteSettingsFacts.extend({
     id: z.uuid(),
     number: z.number(),
@@ -91,6 +93,8 @@ export const ChangePreview = z.object({
   changesCount: z.number(),
   /** Days of which any line changes. */
   changedDays: z.number(),
+  /** Who would be told by mail, of what is new or of what was told differently. */
+  people: z.number(),
   /** Days concerned beyond those looked at, which are the latest; 0: all were. */
   tooMany: z.number(),
 });

@@ -1,6 +1,9 @@
 import { z } from "zod";
+import { planTaskSampling } from "../acoustics/survey-plan";
+import { minimumGroupMeasuringH } from "../acoustics/uncertainty";
 import { Can, IsoDate, LevelDb, Name, PageQuery, pageOf, Reason } from "./common";
 import { InstrumentClassName, OctaveBands } from "./evaluation";
+import { LEAST_SAMPLE_MIN } from "./run-doubts";
 
 export const Strategy = z.enum(["task", "job", "full-day"]);
 export type Strategy = z.infer<typeof Strategy>;
@@ -25,12 +28,58 @@ export const RiskFactors = z.object({
 });
 export type RiskFactors = z.infer<typeof RiskFactors>;
 
-export const SurveyTarget = z.object({
+const TargetFacts = z.object({
   /** Null: the job as a whole. */
   taskId: z.uuid().nullable(),
   samplesCount: z.number().int().min(1).max(200),
   sampleMin: z.number().positive().max(1440),
+  /** How the noise of the task runs: it decides how long a sample lasts. */
+  pattern: z.enum(["steady", "cyclic", "fluctuating"]).default("steady"),
+  cycleMin: z.number().positive().max(1440).nullable().default(null),
 });
+export const SurveyTarget = TargetFacts.check((context) => {
+  const { pattern, cycleMin } = context.value;
+  const code =
+    pattern === "cyclic" && cycleMin === null
+      ? "cycle-needed"
+      : pattern !== "cyclic" && cycleMin !== null
+        ? "cycle-of-cyclic-only"
+        : null;
+  if (code)
+    context.issues.push({
+      code: "custom",
+      input: context.value,
+      path: ["cycleMin"],
+      params: { code },
+    });
+});
+export type SurveyTarget = z.infer<typeof SurveyTarget>;
+
+/**
+ * Minutes that a sample of a target lasts at the least: as planned, and never less than the standard asks. A full day is
+ * as long as it was planned: the standard asks for as much of it as can be.
+ *
+ * @source iso-9612-2009 9.3, 10.2 Table 1
+ */
+export function leastSampleMin(
+  strategy: Strategy,
+  { sampleMin, samplesCount, pattern, cycleMin }: Omit<SurveyTarget, "taskId">,
+  /** Of the task in the nominal day; null where it is not in it. */
+  nominalMin: number | null,
+  groupSize: number,
+): number {
+  if (strategy === "full-day") return sampleMin;
+  if (strategy === "job")
+    return Math.max(
+      sampleMin,
+      (60 * minimumGroupMeasuringH(Math.max(1, groupSize))) / samplesCount,
+    );
+  const asked =
+    nominalMin === null
+      ? LEAST_SAMPLE_MIN
+      : planTaskSampling({ durationMin: nominalMin, pattern, cycleMin, samplesDb: [] }).sampleMin;
+  return Math.max(sampleMin, asked);
+}
 export const SurveyPerson = z.object({
   workerId: z.uuid(),
   part: z.enum(["drawn", "reserve", "named"]),
@@ -101,7 +150,7 @@ export const SurveyPlan = z.object({
   seed: z.string(),
   groupSize: z.number(),
   targets: z.array(
-    SurveyTarget.extend({
+    TargetFacts.extend({
       taskName: z.string().nullable(),
       /** Nominal minutes of the task, and what the shifts of the last months really had. */
       nominalMin: z.number().nullable(),
@@ -118,6 +167,7 @@ export const SurveyPlan = z.object({
       kind: z.string(),
       class: z.string(),
       calibrationDueOn: IsoDate.nullable(),
+      calibrationFailedOn: IsoDate.nullable(),
       reservedBy: z.array(
         z.object({
           surveyId: z.uuid(),
@@ -205,7 +255,12 @@ export const SurveyDetail = SurveyView.extend({
   taskNames: z.record(z.string(), z.string()),
   instrumentNames: z.record(
     z.string(),
-    z.object({ name: z.string(), serialNumber: z.string(), calibrationDueOn: IsoDate.nullable() }),
+    z.object({
+      name: z.string(),
+      serialNumber: z.string(),
+      calibrationDueOn: IsoDate.nullable(),
+      calibrationFailedOn: IsoDate.nullable(),
+    }),
   ),
   /** Tasks of the group's nominal day, for a result that stands for one of them. */
   nominalDay: z.array(
@@ -259,7 +314,11 @@ export type SurveyAdoption = z.infer<typeof SurveyAdoption>;
 
 /** Why a group's noise wants measuring. Codes; the words are made where they are shown. */
 export const MeasuringReason = z.discriminatedUnion("code", [
-  z.object({ code: z.literal("never-measured"), taskNames: z.array(z.string()) }),
+  z.object({
+    code: z.literal("never-measured"),
+    taskNames: z.array(z.string()),
+    taskIds: z.array(z.uuid()),
+  }),
   z.object({ code: z.literal("measured-too-long-ago"), measuredOn: IsoDate, dueOn: IsoDate }),
   z.object({
     code: z.literal("changed-since"),
@@ -267,6 +326,8 @@ export const MeasuringReason = z.discriminatedUnion("code", [
     kind: z.string(),
     what: z.string(),
     happenedOn: IsoDate,
+    /** Tasks of the group whose levels are from before it. */
+    taskIds: z.array(z.uuid()),
     /** Protectors chosen on what has changed. */
     assignmentsCount: z.number(),
   }),

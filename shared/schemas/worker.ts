@@ -1,6 +1,7 @@
 import { z } from "zod";
 import { Can, EmployeeNumber, IsoDate, Language, Name, PageQuery, pageOf } from "./common";
 import { DayFigures } from "./finding";
+import { Size } from "./fit";
 
 export const WorkerInput = z
   .object({
@@ -64,12 +65,17 @@ export const AssignmentView = z.object({
   innerName: z.string(),
   outerModelId: z.uuid().nullable(),
   outerName: z.string().nullable(),
+  size: z.string().nullable(),
+  audioDb: z.number().nullable(),
   fromDate: IsoDate,
   toDate: IsoDate.nullable(),
   revision: z.number(),
 });
 export type AssignmentView = z.infer<typeof AssignmentView>;
 export const AssignmentList = z.object({ rows: z.array(AssignmentView) });
+
+/** Level of a radio or signal under the cup while it is worn, dB(A). */
+export const AudioDb = z.number().min(20).max(120);
 
 export const AssignmentInput = z
   .object({
@@ -79,6 +85,9 @@ export const AssignmentInput = z
     outerModelId: z.uuid().nullable().default(null),
     fromDate: IsoDate,
     toDate: IsoDate.nullable().default(null),
+    /** Of the one next to the ear. Null: it comes in one, or nobody has said. */
+    size: Size.nullable().default(null),
+    audioDb: AudioDb.nullable().default(null),
   })
   .check((context) => {
     const { taskId, areaId, innerModelId, outerModelId, fromDate, toDate } = context.value;

@@ -114,6 +114,7 @@ export function ChangeReview({
     overDays,
     cantTellDays,
     tally,
+    people,
     tooMany,
   } = preview;
   const many = (count: number) => formatNumber(count, 0, locale);
@@ -159,21 +160,15 @@ export function ChangeReview({
       <h2 id="review-head" ref={head} tabIndex={-1}>
         {gravest.length > 0 ? startsSentence(gravest.join(", ")) : changing}
       </h2>
-      {gravest.length > 0 && (
-        <p className="review-lead">
-          {isLowerBound
-            ? i18n.t("{changing} among the {figure} latest.", {
-                changing,
-                figure: many(days - tooMany),
-              })
-            : i18n.t("{changing} in all.", { changing })}
-        </p>
-      )}
       <p className="review-lead">
         {what}{" "}
         {i18n.t(
           "{days, plural, one {# day} other {{figure} days}} of {workers, plural, one {# worker} other {# workers}} rest on this and are computed anew.",
           { days, workers, figure: many(days) },
+        )}{" "}
+        {i18n.t(
+          "{people, plural, =0 {Nobody is told by mail.} one {# person will be told by mail.} other {{figure} people will be told by mail.}}",
+          { people, figure: many(people) },
         )}
         {tooMany > 0 &&
           ` ${i18n.t("{count} earlier days were not looked at here; they are computed anew as well.", { count: many(tooMany) })}`}
@@ -190,10 +185,7 @@ export function ChangeReview({
           </ul>
           {linesDays > changedDays && (
             <p className="review-lead">
-              {i18n.t(
-                "A day that changes in more than one line is counted in each: {lines} changes on {days} days.",
-                { lines: many(linesDays), days: many(changedDays) },
-              )}
+              {i18n.t("A day that changes in more than one line is counted in each.")}
             </p>
           )}
           {actions}

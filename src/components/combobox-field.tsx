@@ -1,6 +1,7 @@
 import { useLingui } from "@lingui/react";
 import { useEffect, useId, useRef, useState } from "react";
 import { type FieldValues, useController } from "react-hook-form";
+import { readTyped, useTypedKey, writeTyped } from "../lib/keep-typed";
 import { problemText } from "../lib/problem-text";
 import { type Choice, Field, type FieldProps } from "./form";
 
@@ -33,6 +34,9 @@ export function ComboboxField<Values extends FieldValues, Output>({
   const [known, setKnown] = useState<Choice | null>(chosen ?? null);
   const [found, setFound] = useState<Found>({ state: "idle" });
   const [active, setActive] = useState(0);
+  // A kept form has the choice's value only: its words are kept beside it.
+  const typedKey = useTypedKey("choice");
+  const labelKey = (value: unknown) => typedKey && `${typedKey} ${String(value)}`;
   const searchRef = useRef(search);
   searchRef.current = search;
 
@@ -60,10 +64,16 @@ export function ComboboxField<Values extends FieldValues, Output>({
 
   const isOpen = text !== null;
   const choices = found.state === "found" ? found.choices : [];
-  const shown = text ?? (known && known.value === field.value ? known.label : "");
+  const shown = text ?? (field.value ? labelOf(field.value) : "");
+
+  function labelOf(value: unknown): string {
+    if (known && known.value === value) return known.label;
+    return String(readTyped(labelKey(value)) ?? "");
+  }
 
   function choose(choice: Choice | null) {
     setKnown(choice);
+    if (choice) writeTyped(labelKey(choice.value), choice.label);
     setText(null);
     setFound({ state: "idle" });
     field.onChange(choice?.value ?? null);

@@ -1,6 +1,7 @@
 import { useLingui } from "@lingui/react";
 import { type ReactNode, useState } from "react";
 import type { Conflict } from "../lib/revised-save";
+import { isSameValue } from "../lib/same-value";
 import { Button } from "./button";
 import { Dialog } from "./dialog";
 
@@ -15,6 +16,7 @@ export function ConflictDialog<Body extends object, View extends { revision: num
   title,
   conflict,
   toBody,
+  savedBy,
   fields,
   onSave,
   onKeepSaved,
@@ -25,6 +27,8 @@ export function ConflictDialog<Body extends object, View extends { revision: num
   conflict: Conflict<Body, View>;
   /** The saved record as it would have been sent. */
   toBody: (saved: View) => Body;
+  /** Who saved it and when, where the record says so: "S. Ferrand, 8 October 14:02". */
+  savedBy?: (saved: View) => string;
   fields: readonly ConflictField<Body>[];
   onSave: (chosen: Body, revision: number) => void;
   onKeepSaved: (saved: View) => void;
@@ -35,7 +39,7 @@ export function ConflictDialog<Body extends object, View extends { revision: num
   const { mine, saved } = conflict;
   const theirs = toBody(saved);
   const [takesSaved, setTakesSaved] = useState<ReadonlySet<string>>(new Set());
-  const differs = (key: keyof Body) => JSON.stringify(mine[key]) !== JSON.stringify(theirs[key]);
+  const differs = (key: keyof Body) => !isSameValue(mine[key], theirs[key]);
   const choose = (key: string, isSaved: boolean) =>
     setTakesSaved((before) => {
       const next = new Set(before);
@@ -50,7 +54,12 @@ export function ConflictDialog<Body extends object, View extends { revision: num
       isOpen
       onClose={onClose}
       title={title}
-      lead={i18n.t("Nothing of yours is lost; choose what stands.")}
+      lead={[
+        savedBy?.(saved) && i18n.t("Saved by {who}.", { who: savedBy(saved) }),
+        i18n.t("Nothing of yours is lost; choose what stands."),
+      ]
+        .filter(Boolean)
+        .join(" ")}
       actions={
         <>
           <Button kind="primary" isBusy={isSaving} onClick={() => onSave(chosen, saved.revision)}>

@@ -2,10 +2,10 @@ import { useLingui } from "@lingui/react";
 import { useEffect, useState } from "react";
 import { type ConnectionState, connectionEvents } from "../lib/api";
 import { Banner } from "./banner";
-import { TextLink } from "./link";
+import { SignInAgain } from "./problem";
 
 /** Says at the top of the page that the connection or the session is gone; what is typed stays where it is. */
-export function ConnectionBanner({ signInTo }: { signInTo: string }) {
+export function ConnectionBanner() {
   const { i18n } = useLingui();
   const [state, setState] = useState<ConnectionState>("ok");
   useEffect(() => connectionEvents.subscribe(setState), []);
@@ -15,12 +15,15 @@ export function ConnectionBanner({ signInTo }: { signInTo: string }) {
         {i18n.t("What you type is kept on this device.")}
       </Banner>
     );
+  if (state === "unavailable")
+    return (
+      <Banner title={i18n.t("The database can’t be reached.")}>
+        {i18n.t("What you type is kept on this device.")}
+      </Banner>
+    );
   if (state === "session-expired")
     return (
-      <Banner
-        title={i18n.t("You have been signed out.")}
-        action={<TextLink to={signInTo}>{i18n.t("Sign in again")}</TextLink>}
-      >
+      <Banner title={i18n.t("You have been signed out.")} action={<SignInAgain />}>
         {i18n.t("What you typed is kept on this device.")}
       </Banner>
     );

@@ -140,13 +140,16 @@ interface Judged {
 const LEVEL_QUANTITIES: ReadonlySet<string> = new Set(["lex-8h", "dose", "table-dose"]);
 const SAYS: readonly VerdictCode[] = ["not-assessed", "under", "cant-tell-yet", "over"];
 
-/** Criteria without protection that are about the main figure, by value; of several at one value the one that says most. */
-function judgedOutside(figures: DayFigures, ruleSet: RuleSetVersion): Judged[] {
-  const main = outsideCriterion(ruleSet);
+/** Criteria without protection that are about one figure, by value; of several at one value the one that says most. */
+function judgedOutside(
+  figures: DayFigures,
+  ruleSet: RuleSetVersion,
+  figure: Criterion = outsideCriterion(ruleSet),
+): Judged[] {
   const byValue = new Map<number, Judged>();
   for (const result of figures.governingCriteria) {
     const criterion = ruleSet.criteria.find(({ id }) => id === result.criterionId);
-    if (criterion?.judged !== "without-protection" || !isSameFigure(criterion, main)) continue;
+    if (criterion?.judged !== "without-protection" || !isSameFigure(criterion, figure)) continue;
     const levelDb = levelOf(criterion);
     const before = byValue.get(levelDb);
     if (before && SAYS.indexOf(before.verdict) >= SAYS.indexOf(result.verdict)) continue;
@@ -190,16 +193,32 @@ export function outsideWords(i18n: I18n, locale: Locale, figures: DayFigures): s
 }
 
 /** The main figure's verdict without protection with the value that it is about: "Over 85", "Over 80, 85 open", "Under 80". */
-export function outsideVerdict(
-  i18n: I18n,
-  locale: Locale,
-  figures: DayFigures,
-): { verdict: VerdictCode; words: string; isClear: boolean } {
+export function outsideVerdict(i18n: I18n, locale: Locale, figures: DayFigures): OutsideVerdict {
   const ruleSet = ruleSetVersion(figures.ruleSetKey, figures.ruleSetVersion);
   const judged = ruleSet ? judgedOutside(figures, ruleSet) : [];
+  return (
+    verdictOf(i18n, judged, ({ criterion }) => criterionValue(locale, criterion)) ?? {
+      verdict: figures.verdictOutside,
+      words: verdictWord(i18n, figures.verdictOutside),
+      isClear: false,
+    }
+  );
+}
+
+interface OutsideVerdict {
+  readonly verdict: VerdictCode;
+  readonly words: string;
+  readonly isClear: boolean;
+}
+
+/** One verdict on a figure that several criteria are about; null where they are not assessed. */
+function verdictOf(
+  i18n: I18n,
+  judged: readonly Judged[],
+  show: (one: Judged) => string,
+): OutsideVerdict | null {
   const over = judged.findLast(({ verdict }) => verdict === "over");
   const open = judged.find(({ verdict }) => verdict === "cant-tell-yet");
-  const show = ({ criterion }: Judged) => criterionValue(locale, criterion);
   if (over && open && open.levelDb > over.levelDb)
     return {
       verdict: "cant-tell-yet",
@@ -225,11 +244,53 @@ export function outsideVerdict(
       words: i18n.t("Under {value}", { value: show(lowest) }),
       isClear: false,
     };
-  return {
-    verdict: figures.verdictOutside,
-    words: verdictWord(i18n, figures.verdictOutside),
-    isClear: false,
-  };
+  return null;
+}
+
+/** The criteria whose figures without protection a rule tells apart by their threshold, the main one first. */
+function figureCriteria(ruleSet: RuleSetVersion): Criterion[] {
+  const found = [outsideCriterion(ruleSet)];
+  for (const criterion of ruleSet.criteria) {
+    const isLevel =
+      criterion.judged === "without-protection" && LEVEL_QUANTITIES.has(criterion.quantity);
+    if (isLevel && !found.some((one) => isSameFigure(one, criterion))) found.push(criterion);
+  }
+  return found;
+}
+
+/** What each figure of `OutsideLines` is, one by one: "TWA, threshold 80", "TWA, threshold 90". Empty where it is a LEX. */
+export function outsideBases(i18n: I18n, locale: Locale, ruleSet: RuleSetVersion): string[] {
+  return figureCriteria(ruleSet).flatMap((criterion) => levelBasis(i18n, locale, criterion) ?? []);
+}
+
+/** Without protection, a line for each figure that the rule has: "≥92.4 Over 85". What each is stands in the column's head. */
+export function OutsideLines({ figures }: { figures: DayFigures }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const ruleSet = ruleSetVersion(figures.ruleSetKey, figures.ruleSetVersion);
+  if (!ruleSet) return null;
+  return (
+    <span className="outside-lines">
+      {figureCriteria(ruleSet).map((criterion) => {
+        const result = figures.governingCriteria.find(
+          ({ criterionId }) => criterionId === criterion.id,
+        );
+        const said = verdictOf(i18n, judgedOutside(figures, ruleSet, criterion), (one) =>
+          formatLimit(one.levelDb, locale),
+        );
+        return (
+          <span key={criterion.id} className="outside-line">
+            <span className="figure">
+              {formatLevel(result?.levelDb ?? null, locale, result?.bound)}
+            </span>
+            <Verdict verdict={said?.verdict ?? "not-assessed"} isQuiet>
+              {said?.words}
+            </Verdict>
+          </span>
+        );
+      })}
+    </span>
+  );
 }
 
 /** At the ear ± U, its verdict beneath; where the rule has no limit there, it says so. */

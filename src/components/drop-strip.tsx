@@ -225,7 +225,7 @@ export function StripGround({
 }) {
   const geometry = levelScale(limits, targetBand, widthPx);
   return (
-    <svg className="strip strip-fill" width={widthPx} aria-hidden="true">
+    <svg className="strip strip-fill is-ground" width={widthPx} aria-hidden="true">
       <UnbrokenBand geometry={geometry} />
       <UnbrokenLimits geometry={geometry} />
     </svg>

@@ -1,7 +1,7 @@
 import { useLingui } from "@lingui/react";
 import type { ReactNode } from "react";
-import { problemText } from "../lib/problem-text";
 import { TextButton } from "./link";
+import { Problem } from "./problem";
 
 /** A part that failed, in its own place: what failed, what still holds, and a way to try again. */
 export function Failed({
@@ -18,7 +18,7 @@ export function Failed({
   return (
     <p className="failed" role="alert">
       <span className="reversed">{i18n.t("Not shown")}</span>
-      {children ?? problemText(i18n, error)}{" "}
+      {children ?? <Problem error={error} />}{" "}
       {onRetry && <TextButton onClick={onRetry}>{i18n.t("Try again")}</TextButton>}
     </p>
   );

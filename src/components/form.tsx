@@ -4,6 +4,7 @@ import {
   type FormEventHandler,
   type InputHTMLAttributes,
   type ReactNode,
+  useEffect,
   useId,
   useState,
 } from "react";
@@ -24,8 +25,9 @@ import { formatShortDate, parseDate, parseTime } from "../../shared/format/date"
 import { parseDuration } from "../../shared/format/duration";
 import { editNumber, type Parsed, parseNumber } from "../../shared/format/number";
 import { type FieldIssue, issueText } from "../../shared/problems/issue-text";
-import { ApiError } from "../lib/api";
+import { ApiError, connectionEvents } from "../lib/api";
 import { useLocale } from "../lib/i18n";
+import { readTyped, useTypedKey, writeTyped } from "../lib/keep-typed";
 import { Button } from "./button";
 
 /**
@@ -37,6 +39,16 @@ export class Unreadable {
     readonly code: FieldIssue["code"],
     readonly text: string,
   ) {}
+
+  toJSON() {
+    return { unreadable: this.code, text: this.text };
+  }
+
+  static revive(value: unknown): unknown {
+    return typeof value === "object" && value !== null && "unreadable" in value && "text" in value
+      ? new Unreadable(String(value.unreadable), String(value.text))
+      : value;
+  }
 }
 
 function findUnreadable(value: unknown, path: string[] = []): { path: string; code: string }[] {
@@ -57,11 +69,20 @@ type FormSchema = z.ZodType<FieldValues, FieldValues>;
 
 /**
  * A form held to the schema that the server uses. Codes become sentences here, in the reader's language; an unreadable
- * field (a number with an ambiguous comma) is named as such before the schema is asked.
+ * field (a number with an ambiguous comma) is named as such before the schema is asked. What is typed is kept over a
+ * reload and a lost session.
  */
 export function useSchemaForm<Schema extends FormSchema>(
   schema: Schema,
-  options: { defaultValues: DefaultValues<z.input<Schema>>; mode?: "onBlur" | "onSubmit" },
+  {
+    keepAs = "",
+    ...options
+  }: {
+    defaultValues: DefaultValues<z.input<Schema>>;
+    mode?: "onBlur" | "onSubmit";
+    /** Which of several records at one address, or of several forms with the same fields; null: kept elsewhere. */
+    keepAs?: string | null;
+  },
 ): UseFormReturn<z.input<Schema>, unknown, z.output<Schema>> {
   const { i18n } = useLingui();
   const resolver: Resolver<z.input<Schema>, unknown, z.output<Schema>> = (values) => {
@@ -78,11 +99,46 @@ export function useSchemaForm<Schema extends FormSchema>(
       put(issue.path.map(String).join(".") || "root", toFieldIssue(issue));
     return { values: {}, errors: errors as FieldErrors<z.input<Schema>> };
   };
-  return useForm<z.input<Schema>, unknown, z.output<Schema>>({
+  const form = useForm<z.input<Schema>, unknown, z.output<Schema>>({
     mode: "onBlur",
     ...options,
     resolver,
   });
+  const fields = Object.keys(options.defaultValues).join();
+  useKeepTyped(form, keepAs === null ? null : `${window.location.pathname} ${keepAs} ${fields}`);
+  return form;
+}
+
+/**
+ * Keeps what differs from what the form opened with, so that another's change meanwhile is not undone by it. A form that
+ * goes while all is well was saved or left on purpose; one that goes because nobody is signed in any more comes back as
+ * it was.
+ */
+function useKeepTyped<Values extends FieldValues, Output>(
+  form: UseFormReturn<Values, unknown, Output>,
+  name: string | null,
+): void {
+  const key = useTypedKey(name);
+  const [kept] = useState(() => ({ key, values: readTyped(key, Unreadable.revive) }));
+  // biome-ignore lint/correctness/useExhaustiveDependencies: the form's methods stay what they are
+  useEffect(() => {
+    if (kept.key === null) return;
+    const unsubscribe = form.subscribe({
+      formState: { values: true },
+      callback({ values, defaultValues }) {
+        const typed = Object.entries<unknown>(values).filter(
+          ([field, value]) => JSON.stringify(value) !== JSON.stringify(defaultValues?.[field]),
+        );
+        writeTyped(kept.key, typed.length > 0 ? Object.fromEntries(typed) : null);
+      },
+    });
+    for (const [field, value] of Object.entries(kept.values ?? {}))
+      form.setValue(field as FieldPath<Values>, value, { shouldDirty: true });
+    return () => {
+      unsubscribe();
+      if (connectionEvents.now() === "ok") writeTyped(kept.key, null);
+    };
+  }, [kept]);
 }
 
 function setAt(target: Record<string, unknown>, path: string, value: unknown): void {

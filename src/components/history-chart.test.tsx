@@ -52,3 +52,29 @@ test("a level beyond the frame widens it: its tick stays above the limit's line"
   expect(y(".day-tick")).toBeGreaterThanOrEqual(0);
   expect(y(".day-tick")).toBeLessThan(y(".limit-line"));
 });
+
+test("the words of a tick just over or under the limit stand clear of the limit's line", () => {
+  const noteAndLine = (levelDb: number) => {
+    const { container, unmount } = render(
+      <TestLanguage>
+        <HistoryChart
+          title="Year"
+          variant="worker"
+          days={[{ date: "2026-11-30", levelDb, note: "88" }]}
+          limitDb={87}
+          tableLink={null}
+        />
+      </TestLanguage>,
+    );
+    const note = [...container.querySelectorAll("text.label-ink")].find(
+      ({ textContent }) => textContent === "88",
+    );
+    const noteY = Number(note?.getAttribute("y"));
+    const lineY = Number(container.querySelector(".limit-line")?.getAttribute("y1"));
+    unmount();
+    return noteY - lineY;
+  };
+  // The baseline over the line, and under it by the height of the figures.
+  expect(noteAndLine(87.6)).toBeLessThanOrEqual(-4);
+  expect(noteAndLine(86.8)).toBeGreaterThanOrEqual(14);
+});

@@ -36,6 +36,8 @@ const LOW_DB = 70;
 const HIGH_DB = 90;
 /** A row of a mark's words. */
 const LABEL_ROW_PX = 18;
+/** Between a limit's line and a tick's words. */
+const NOTE_CLEARANCE_PX = 4;
 /** Of a mark's words, on the wide side: they are placed before they are drawn. */
 const CHARACTER_PX = { officer: 6.6, worker: 7.4 };
 
@@ -97,6 +99,14 @@ export function HistoryChart({
   const x = (day: number) => 4 + (day - fromDay) * dayPx;
   const levelPx = (plotPx - 6) / (topDb - bottomDb);
   const y = (levelDb: number) => plotPx - (levelDb - bottomDb) * levelPx;
+  // Words of a tick close to the limit stand clear of its line, on the tick's side.
+  const noteY = (levelDb: number) => {
+    const besideY = y(levelDb) + 4;
+    if (limitDb === null) return besideY;
+    return levelDb > limitDb
+      ? Math.min(besideY, y(limitDb) - NOTE_CLEARANCE_PX)
+      : Math.max(besideY, y(limitDb) + NOTE_CLEARANCE_PX + 10);
+  };
   const markX = (mark: HistoryMark) => Math.round(x(dayNumber(mark.date)));
   const labels = placeLabels(
     marks.map((mark) => ({
@@ -188,7 +198,7 @@ export function HistoryChart({
                   x1={markX(mark)}
                   x2={markX(mark)}
                   y1={limitDb === null ? 6 : y(limitDb) + 8}
-                  y2={bottomY}
+                  y2={label.isUnderLine ? bottomY - LABEL_ROW_PX + 2 : bottomY}
                 />
                 <text
                   className="label-mark"
@@ -218,7 +228,7 @@ export function HistoryChart({
                   <text
                     className="label-ink"
                     x={dayX + (isRight ? -8 : 8)}
-                    y={y(day.levelDb) + 4}
+                    y={noteY(day.levelDb)}
                     textAnchor={isRight ? "end" : "start"}
                   >
                     {day.note}

@@ -5,6 +5,8 @@ export interface PlacedLabel {
   readonly isEnd: boolean;
   /** 0 is the row next to the ticks. */
   readonly row: number;
+  /** They have no room beside their own line, which ends above them then. */
+  readonly isUnderLine: boolean;
 }
 
 interface Span {
@@ -30,7 +32,12 @@ export function placeLabels(
   const order = labels
     .map((label, index) => ({ ...label, index, isEnd: isInRightHalf(label) }))
     .toSorted((a, b) => (a.isEnd && b.isEnd ? a.lineX - b.lineX : b.lineX - a.lineX));
-  const result: PlacedLabel[] = labels.map(() => ({ x: 0, isEnd: false, row: 0 }));
+  const result: PlacedLabel[] = labels.map(() => ({
+    x: 0,
+    isEnd: false,
+    row: 0,
+    isUnderLine: false,
+  }));
   for (const { lineX, width, index, isEnd } of order) {
     const x = isEnd
       ? Math.min(widthPx, Math.max(width, lineX - GAP))
@@ -45,7 +52,8 @@ export function placeLabels(
     let row = 0;
     while (row < placed.length && !isFree(row)) row += 1;
     placed.push({ lineX, ...span, row });
-    result[index] = { x, isEnd, row };
+    const isUnderLine = lineX > span.fromX && lineX < span.toX;
+    result[index] = { x, isEnd, row, isUnderLine };
   }
   return result;
 }

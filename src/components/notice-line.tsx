@@ -9,6 +9,8 @@ export function NoticeLine({
   state,
   peopleCount,
   time,
+  isCorrection = false,
+  correctedAt = null,
   detail,
   onLook,
   onHold,
@@ -18,12 +20,19 @@ export function NoticeLine({
   peopleCount: number;
   /** Local time, "10:40". */
   time: string;
+  /** They are told that this replaces an earlier mail. */
+  isCorrection?: boolean;
+  /** Local date and time at which a correction of it left; null: none has. */
+  correctedAt?: string | null;
   detail?: ReactNode;
   onLook?: () => void;
   onHold?: () => void;
   onSendNow?: () => void;
 }) {
   const { i18n } = useLingui();
+  const aboutCorrection = correctedAt
+    ? i18n.t("A correction was sent: {at}.", { at: correctedAt })
+    : !isCorrection && i18n.t("A correction sends “This replaces…”");
   return (
     <div className="notice-line" role="status">
       <span>
@@ -35,12 +44,19 @@ export function NoticeLine({
             )}
           {state === "held" && i18n.t("Held by you.")}
           {state === "were-told" &&
+            isCorrection &&
+            i18n.t(
+              "{count, plural, one {The correction was sent to # person at {time}.} other {The correction was sent to # people at {time}.}}",
+              { count: peopleCount, time },
+            )}
+          {state === "were-told" &&
+            !isCorrection &&
             i18n.t(
               "{count, plural, one {# person was told at {time}.} other {# people were told at {time}.}}",
               { count: peopleCount, time },
             )}
         </b>{" "}
-        {detail ?? (state === "were-told" ? i18n.t("A correction sends “This replaces…”") : null)}
+        {detail ?? (state === "were-told" && aboutCorrection)}
       </span>
       {state === "will-be-told" && onLook && (
         <TextButton onClick={onLook}>{i18n.t("Look")}</TextButton>

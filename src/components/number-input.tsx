@@ -1,4 +1,4 @@
-import { type InputHTMLAttributes, useState } from "react";
+import { type ComponentProps, useState } from "react";
 import { editNumber, parseNumber } from "../../shared/format/number";
 import { useLocale } from "../lib/i18n";
 import { Unreadable } from "./form";
@@ -12,7 +12,7 @@ export function NumberInput({
   onValue,
   className = "input is-number",
   ...props
-}: Omit<InputHTMLAttributes<HTMLInputElement>, "value" | "onChange"> & {
+}: Omit<ComponentProps<"input">, "value" | "onChange"> & {
   value: Typed | undefined;
   onValue: (value: Typed) => void;
 }) {

@@ -1,6 +1,7 @@
 import { useLingui } from "@lingui/react";
 import { type ReactNode, useLayoutEffect, useRef, useState } from "react";
 import { Link, NavLink, useLocation } from "react-router-dom";
+import { usePageTitle } from "../lib/page-title";
 
 export interface NavItem {
   readonly to: string;
@@ -82,18 +83,13 @@ function RunningNav({ items }: { items: readonly NavItem[] }) {
     const words = list.current;
     if (!words || isOpen || typeof ResizeObserver === "undefined") return;
     const measure = () => {
-      const end = words.clientHeight;
+      const links = [...words.querySelectorAll<HTMLElement>("li > a")];
       const current = words.querySelector<HTMLElement>("[aria-current=page]");
+      // Against the first word and not the list's height: a line is as high as the reader's text makes it.
       const isBelow = (element: HTMLElement | null | undefined) =>
-        element != null && element.offsetTop - words.offsetTop >= end;
+        element != null && element.offsetTop > (links[0]?.offsetTop ?? 0);
       words.scrollTop = 0;
-      setHides(
-        isBelow(current)
-          ? "current"
-          : isBelow(words.querySelector<HTMLElement>("li:last-child > a"))
-            ? "words"
-            : "nothing",
-      );
+      setHides(isBelow(current) ? "current" : isBelow(links.at(-1)) ? "words" : "nothing");
     };
     measure();
     const observer = new ResizeObserver(measure);
@@ -202,6 +198,8 @@ export function PageHead({
   actions?: ReactNode;
 }) {
   const { i18n } = useLingui();
+  const heading = useRef<HTMLHeadingElement>(null);
+  usePageTitle(heading);
   return (
     <div className="page-head">
       <div className="page-head-words">
@@ -210,7 +208,7 @@ export function PageHead({
             {way}
           </nav>
         )}
-        <h1>{title}</h1>
+        <h1 ref={heading}>{title}</h1>
         {lead && <p className="lead">{lead}</p>}
       </div>
       {actions && <div className="page-actions">{actions}</div>}

@@ -5,6 +5,7 @@ import type { DefaultValues, FieldValues, UseFormReturn } from "react-hook-form"
 import type { z } from "zod";
 import { api, type ReplySchema } from "../lib/api";
 import { useChangeKey } from "../lib/change-key";
+import { useOneAtATime } from "../lib/one-at-a-time";
 import { useRevisedSave } from "../lib/revised-save";
 import { Button } from "./button";
 import { ConflictDialog, type ConflictField } from "./conflict-dialog";
@@ -28,6 +29,7 @@ export function RecordForm<
   toBody,
   fields,
   conflictTitle,
+  keepAs = "",
   onSaved,
   onLeave,
   children,
@@ -44,14 +46,20 @@ export function RecordForm<
   toBody: (view: View) => z.output<Schema>;
   fields: readonly ConflictField<z.output<Schema>>[];
   conflictTitle: string;
+  /** Which of several new ones at one address. */
+  keepAs?: string;
   onSaved: (view: View) => void;
   onLeave: () => void;
   children: (form: UseFormReturn<z.input<Schema>, unknown, z.output<Schema>>) => ReactNode;
 }) {
   const { i18n } = useLingui();
   const changeKey = useChangeKey();
-  const form = useSchemaForm(schema, { defaultValues });
+  const form = useSchemaForm(schema, {
+    defaultValues,
+    keepAs: `${path} ${record?.id ?? `new ${keepAs}`}`,
+  });
   const showIssues = showIssuesOn(form, i18n);
+  const { begin, end } = useOneAtATime();
   const create = useMutation({
     mutationFn: (body: z.output<Schema>) =>
       api.post(path, { body, schema: viewSchema, idempotencyKey: changeKey.keyFor(body) }),
@@ -60,10 +68,12 @@ export function RecordForm<
       onSaved(view);
     },
     onError: showIssues,
+    onSettled: end,
   });
   const change = useRevisedSave<z.output<Schema>, View>({
     path: () => `${path}/${record?.id}`,
     schema: viewSchema,
+    toBody,
     onSaved,
     onError: showIssues,
   });
@@ -71,15 +81,18 @@ export function RecordForm<
     <>
       <Form
         aria-label={name}
-        onSubmit={form.handleSubmit((body) =>
-          record ? change.save(body, record.revision) : create.mutate(body),
-        )}
+        onSubmit={form.handleSubmit((body) => {
+          if (record) change.save(body, record.revision);
+          else if (begin()) create.mutate(body);
+        })}
       >
         {children(form)}
         <FormProblem error={record ? change.error : create.error} />
         <FormActions>
           <SubmitButton isBusy={create.isPending || change.isSaving}>{i18n.t("Save")}</SubmitButton>
-          <Button onClick={onLeave}>{i18n.t("Leave as it was")}</Button>
+          <Button onClick={onLeave}>
+            {record ? i18n.t("Leave as it was") : i18n.t("Cancel")}
+          </Button>
         </FormActions>
       </Form>
       {change.conflict && (

@@ -5,6 +5,7 @@ import type { z } from "zod";
 import type { ChangePreview } from "../../shared/schemas/site";
 import { ApiError, api, type ReplySchema } from "../lib/api";
 import { useChangeKey } from "../lib/change-key";
+import { useOneAtATime } from "../lib/one-at-a-time";
 import { paths } from "../paths";
 import { Button } from "./button";
 import { ChangeReview, useChangePreview } from "./change-preview";
@@ -32,6 +33,7 @@ export function useReviewedChange<Body extends object, View>({
     preview: z.infer<typeof ChangePreview>;
   } | null>(null);
   const preview = useChangePreview(`${path}/preview`, onError);
+  const { begin, end } = useOneAtATime();
   const save = useMutation({
     mutationFn: (body: Body) =>
       api.post(path, { body, schema, idempotencyKey: changeKey.keyFor(body) }),
@@ -45,10 +47,17 @@ export function useReviewedChange<Body extends object, View>({
       if (error instanceof ApiError && error.issues.length > 0) setReviewed(null);
       onError(error);
     },
+    onSettled: end,
   });
   return {
     preview,
-    save,
+    save: {
+      error: save.error,
+      isPending: save.isPending,
+      mutate: (body: Body) => {
+        if (begin()) save.mutate(body);
+      },
+    },
     reviewed,
     /** `asked`: what the preview is asked with, where that is not the whole body. */
     look: (body: Body, asked: object = body) =>

@@ -9,7 +9,7 @@ const WIDTH_PX = 350;
 const K = 2.1;
 const LINE = 20;
 /** Of the strip's words, on the wide side: they are placed before they are drawn. */
-const CHARACTER = 8;
+const CHARACTER = 9;
 
 /** The strip as an arrow in whole decibels: on the worker’s page, where nothing else of a strip is loaded. */
 export function WorkerStrip(props: StripWords) {

@@ -26,7 +26,8 @@ export class ApiError extends Error {
   }
 }
 
-export type ConnectionState = "ok" | "offline" | "session-expired";
+/** `unavailable`: the server answers, but can't do anything, as without its database. */
+export type ConnectionState = "ok" | "offline" | "unavailable" | "session-expired";
 
 function createConnectionEvents() {
   let state: ConnectionState = "ok";
@@ -42,6 +43,7 @@ function createConnectionEvents() {
       state = next;
       for (const listener of listeners) listener(next);
     },
+    now: (): ConnectionState => state,
   };
 }
 
@@ -172,7 +174,9 @@ async function request<T>(method: string, path: string, options: ChangeOptions<T
     const body: unknown = await response.json().catch(() => null);
     const problem = toProblem(response.status, response.statusText, body);
     const isSessionLost = response.status === 401 && options.asksWhoIsThere !== true;
-    connectionEvents.tell(isSessionLost ? "session-expired" : "ok");
+    connectionEvents.tell(
+      isSessionLost ? "session-expired" : response.status >= 502 ? "unavailable" : "ok",
+    );
     throw problem;
   }
   connectionEvents.tell("ok");

@@ -14,6 +14,12 @@ export function doubtWord(i18n: I18n, code: RunDoubtCode): string {
       return i18n.t("Calibration failed");
     case "run-too-short":
       return i18n.t("Run time too short");
+    case "field-check-missing":
+      return i18n.t("A field check is missing");
+    case "outside-shift":
+      return i18n.t("Outside the shift");
+    case "shorter-than-shift":
+      return i18n.t("Shorter than the shift");
     case "clipped":
       return i18n.t("Overloaded");
     case "under-range":

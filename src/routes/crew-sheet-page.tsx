@@ -1,6 +1,6 @@
 import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
-import { type ReactNode, useMemo } from "react";
+import { type ReactNode, useMemo, useRef } from "react";
 import { Link, useNavigate, useParams, useSearchParams } from "react-router-dom";
 import { formatTime, localDateOf } from "../../shared/format/date";
 import { ruleSetVersion } from "../../shared/rule-sets";
@@ -23,6 +23,7 @@ import {
 } from "../features/crew-sheet/sheet-parts";
 import { useUser } from "../features/session/session";
 import { useLocale } from "../lib/i18n";
+import { usePageTitle } from "../lib/page-title";
 import { useNow } from "../lib/use-now";
 import { paths } from "../paths";
 import "../styles/crew-sheet.css";
@@ -42,7 +43,7 @@ export function Component() {
   if (id !== undefined) return <CrewSheet crewId={id} />;
   return (
     <PageBody>
-      <h1 className="sheet-crew">{i18n.t("Crew sheet")}</h1>
+      <NoCrewHead />
       {crews.isPending && <SheetLoading />}
       {crews.isError && <Failed error={crews.error} onRetry={() => void crews.refetch()} />}
       {crews.isSuccess && (
@@ -52,6 +53,13 @@ export function Component() {
       )}
     </PageBody>
   );
+}
+
+function NoCrewHead() {
+  const { i18n } = useLingui();
+  const title = i18n.t("Crew sheet");
+  usePageTitle(title);
+  return <h1 className="sheet-crew">{title}</h1>;
 }
 
 function CrewSheet({ crewId }: { crewId: string }) {
@@ -187,9 +195,11 @@ function CrewChoice({
   const { i18n } = useLingui();
   const navigate = useNavigate();
   const isChoice = crews.length > 1;
+  const heading = useRef<HTMLHeadingElement>(null);
+  usePageTitle(heading);
   return (
     <div className="sheet-head">
-      <h1 className="sheet-crew">
+      <h1 className="sheet-crew" ref={heading}>
         {crew && !isChoice
           ? i18n.t("Crew sheet, {crew}", { crew: crew.name })
           : i18n.t("Crew sheet")}

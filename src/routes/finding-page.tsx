@@ -5,11 +5,13 @@ import { useParams } from "react-router-dom";
 import type { RuleSetVersion } from "../../shared/acoustics/types";
 import { citationOf, criterionValue, levelBasis, ruleSetOf } from "../../shared/findings/basis";
 import { handoutsOf, listWords, protectorNames, remedyOf } from "../../shared/findings/facts";
+import { NEWS_FOR_DAYS } from "../../shared/findings/notified";
 import { noticedSentence, orderSentence, remedyFigure } from "../../shared/findings/sentences";
 import { findingStateWord, findingWord } from "../../shared/findings/words";
 import { formatDate, formatInstant, formatShortDate } from "../../shared/format/date";
 import { formatLevel } from "../../shared/format/level";
 import { formatNumber } from "../../shared/format/number";
+import { isolate } from "../../shared/i18n/isolate";
 import { RULE_SETS, ruleSetVersion } from "../../shared/rule-sets";
 import type { FindingView } from "../../shared/schemas/finding";
 import { Button, ButtonLink } from "../components/button";
@@ -31,6 +33,7 @@ import { ProtectorWord, protectorWordText } from "../components/protector-word";
 import { findingQueries } from "../features/findings/queries";
 import { StepForm } from "../features/findings/step-form";
 import { LookAtNotices } from "../features/notices/outgoing-notice";
+import { OfficeLink } from "../features/session/office-link";
 import { useUser } from "../features/session/session";
 import { useLocale } from "../lib/i18n";
 import { paths } from "../paths";
@@ -75,11 +78,11 @@ function Finding({ finding }: { finding: FindingView }) {
         <PageHead
           way={
             <>
-              <TextLink to={paths.findings}>{i18n.t("Findings")}</TextLink> /{" "}
+              <OfficeLink to={paths.findings}>{i18n.t("Findings")}</OfficeLink> /{" "}
               {worker ? (
                 <TextLink
                   to={paths.worker(worker.id)}
-                >{`${worker.name}, ${worker.employeeNumber}`}</TextLink>
+                >{`${isolate(worker.name)}, ${worker.employeeNumber}`}</TextLink>
               ) : (
                 who
               )}
@@ -117,7 +120,14 @@ function Finding({ finding }: { finding: FindingView }) {
                         })}
                   </ButtonLink>
                 ))
-              : undefined
+              : isAboutFit(finding) &&
+                worker &&
+                finding.can.handle &&
+                finding.state !== "closed" && (
+                  <ButtonLink kind="primary" to={paths.fittingOf(worker.id)}>
+                    {i18n.t("Fit and issue")}
+                  </ButtonLink>
+                )
           }
         />
         {finding.state !== "closed" && (
@@ -142,6 +152,8 @@ function Finding({ finding }: { finding: FindingView }) {
     </>
   );
 }
+
+const isAboutFit = ({ kind }: FindingView) => kind === "fit-failed" || kind === "fit-due";
 
 /** What a finding rests on, kept with it; one that is older has it from its last day. */
 function ruleSetBehind({ facts, figures }: FindingView): RuleSetVersion | null {
@@ -264,11 +276,13 @@ function Evidence({ finding }: { finding: FindingView }) {
           <Empty title={i18n.t("No day stands behind this finding.")}>
             {finding.kind === "problem-reported"
               ? i18n.t("The worker reported it.")
-              : finding.kind === "instrument"
-                ? i18n.t("It is about the instrument, not about a day.")
-                : finding.steps.some(({ kind }) => kind === "rules-changed")
-                  ? i18n.t("The days that showed it were judged again, by other rules.")
-                  : i18n.t("The days that showed it were corrected.")}
+              : isAboutFit(finding)
+                ? i18n.t("It is about a fit, not about a day.")
+                : finding.kind === "instrument"
+                  ? i18n.t("It is about the instrument, not about a day.")
+                  : finding.steps.some(({ kind }) => kind === "rules-changed")
+                    ? i18n.t("The days that showed it were judged again, by other rules.")
+                    : i18n.t("The days that showed it were corrected.")}
           </Empty>
         }
       />
@@ -287,6 +301,7 @@ function Evidence({ finding }: { finding: FindingView }) {
 function stepWords(
   i18n: ReturnType<typeof useLingui>["i18n"],
   step: FindingView["steps"][number],
+  isOfFit: boolean,
 ): string {
   switch (step.kind) {
     case "comment":
@@ -296,7 +311,9 @@ function stepWords(
     case "cannot":
       return i18n.t("Can’t, because");
     case "evidence-gone":
-      return i18n.t("The day that showed it was corrected");
+      return isOfFit
+        ? i18n.t("The fit test that showed it was corrected or struck out")
+        : i18n.t("The day that showed it was corrected");
     case "rules-changed": {
       const now = RULE_SETS.find(({ key }) => key === step.text);
       return now
@@ -327,7 +344,7 @@ function Steps({ finding }: { finding: FindingView }) {
         <li key={step.id}>
           <time dateTime={step.at}>{formatInstant(step.at, timeZone, locale)}</time>
           <span>
-            <b>{stepWords(i18n, step)}</b>{" "}
+            <b>{stepWords(i18n, step, isAboutFit(finding))}</b>{" "}
             <span className="by">
               {step.authorName
                 ? i18n.t("by {name}", { name: step.authorName })
@@ -336,7 +353,7 @@ function Steps({ finding }: { finding: FindingView }) {
                   : ""}
             </span>
             {step.text && step.kind !== "evidence-gone" && step.kind !== "rules-changed" && (
-              <span className="said block">{step.text}</span>
+              <span className="said block">{ownReasonWords(i18n, step.text) ?? step.text}</span>
             )}
           </span>
         </li>
@@ -347,8 +364,30 @@ function Steps({ finding }: { finding: FindingView }) {
 
 /** A reason that a person gave, or what the program itself closed it for. */
 function closingWords(i18n: ReturnType<typeof useLingui>["i18n"], reason: string | null): string {
-  if (reason === "calibrated") return `: ${i18n.t("the instrument was calibrated")}.`;
-  return reason === null || reason === "evidence-gone" ? "." : `: ${reason}`;
+  if (reason === null || reason === "evidence-gone") return ".";
+  const own = ownReasonWords(i18n, reason);
+  return own === null ? `: ${reason}` : `: ${own}.`;
+}
+
+/** What the program itself closes a finding for; null for what a person wrote. */
+function ownReasonWords(
+  i18n: ReturnType<typeof useLingui>["i18n"],
+  reason: string | null,
+): string | null {
+  switch (reason) {
+    case "calibrated":
+      return i18n.t("the instrument was calibrated");
+    case "refitted":
+      return i18n.t("it was fitted anew");
+    case "other-issued":
+      return i18n.t("another that fits was handed out");
+    case "fit-tested":
+      return i18n.t("the fit was tested");
+    case "no-longer-due":
+      return i18n.t("it is no longer due");
+    default:
+      return null;
+  }
 }
 
 function toldWord(i18n: ReturnType<typeof useLingui>["i18n"], state: string): string {
@@ -367,6 +406,25 @@ function toldWord(i18n: ReturnType<typeof useLingui>["i18n"], state: string): st
       return i18n.t("not sent");
     default:
       return i18n.t("withdrawn");
+  }
+}
+
+function untoldWords(
+  i18n: ReturnType<typeof useLingui>["i18n"],
+  untold: NonNullable<FindingView["untold"]>,
+): string {
+  switch (untold) {
+    case "not-by-mail":
+      return i18n.t("Nobody by mail; it waits on this page.");
+    case "corrected":
+      return i18n.t("Nobody: the days that showed it were corrected before anybody was told.");
+    case "long-ago":
+      return i18n.t(
+        "Nobody by mail: its last day lay more than {days} days back when it was noticed.",
+        { days: NEWS_FOR_DAYS },
+      );
+    case "no-address":
+      return i18n.t("Nobody: nobody who is to be told of it has an address for mail.");
   }
 }
 
@@ -419,7 +477,7 @@ function Margin({ finding }: { finding: FindingView }) {
         )}
       </MarginNote>
       <MarginNote title={i18n.t("Who is told")}>
-        {finding.told.length === 0 && <p>{i18n.t("Nobody by mail; it waits on this page.")}</p>}
+        {finding.untold && <p>{untoldWords(i18n, finding.untold)}</p>}
         {finding.told.map((told) => (
           <p key={told.noticeId}>
             <b className="label-ink">{told.name}</b> {toldWord(i18n, told.state)}

@@ -3,6 +3,7 @@ import { useQuery } from "@tanstack/react-query";
 import { useParams, useSearchParams } from "react-router-dom";
 import { formatMinutes } from "../../shared/format/duration";
 import { formatLevel } from "../../shared/format/level";
+import { withoutStop } from "../../shared/format/words";
 import type { GroupView } from "../../shared/schemas/group";
 import { ButtonLink } from "../components/button";
 import { DataTable } from "../components/data-table";
@@ -11,8 +12,8 @@ import { Failed } from "../components/failed";
 import { FilterRow, FilterSelect } from "../components/filter-row";
 import { TextLink } from "../components/link";
 import { Folio, PageBody, PageHead, Section } from "../components/page";
-import { GroupBudget } from "../features/groups/group-budget";
-import { belongingWords, Statistics } from "../features/groups/group-statistics";
+import { AsInForce, GroupBudget } from "../features/groups/group-budget";
+import { belongingWords, GroupFigures, MembersAlike } from "../features/groups/group-statistics";
 import { groupQueries } from "../features/groups/queries";
 import { useLocale } from "../lib/i18n";
 import { isOffNominal } from "../lib/nominal-check";
@@ -43,7 +44,8 @@ export function Component() {
     );
   const taskName = (id: string) =>
     group.nominalDay.find(({ taskId }) => taskId === id)?.taskName ?? i18n.t("a task");
-  const { statistics, basis } = group;
+  const { basis, blocks, isOtherQuantity } = group;
+  const [mainBlock] = blocks;
   return (
     <>
       <PageBody>
@@ -53,8 +55,8 @@ export function Component() {
           lead={i18n.t("{count, plural, one {# worker} other {# workers}}, {site}. {verdict}", {
             count: group.workersCount,
             site: group.siteName,
-            verdict: statistics
-              ? belongingWords(i18n, statistics.belonging)
+            verdict: mainBlock?.statistics
+              ? belongingWords(i18n, mainBlock.statistics.belonging)
               : i18n.t("Nothing was measured on its members yet."),
           })}
           actions={
@@ -86,7 +88,11 @@ export function Component() {
             }
             id={`budget-${budget.surveyId ?? "in-force"}`}
           >
-            <GroupBudget of={budget} taskName={taskName} />
+            {budget.isAsInForce && budget.budget ? (
+              <AsInForce budget={budget.budget} keptReasons={budget.keptReasons} />
+            ) : (
+              <GroupBudget of={budget} taskName={taskName} />
+            )}
           </Section>
         ))}
         <Section title={i18n.t("What its members’ samples say")} id="statistics">
@@ -105,28 +111,31 @@ export function Component() {
               />
             </FilterRow>
           )}
+          {group.surveys.length === 0 && mainBlock?.statistics && (
+            <p className="group-kept">{i18n.t("Days measured on the workers, last 12 months")}.</p>
+          )}
           {basis.leftOutCount > 0 && (
             <p className="group-kept">
-              {basis.surveyId
-                ? i18n.t(
-                    "{count, plural, one {# sample does} other {# samples do}} not count and stay out.",
-                    { count: basis.leftOutCount },
-                  )
-                : i18n.t(
-                    "{count, plural, one {# day has} other {# days have}} only a lower bound and stay out.",
-                    { count: basis.leftOutCount },
-                  )}
+              {i18n.t(
+                "{count, plural, one {# sample does} other {# samples do}} not count and stay out.",
+                { count: basis.leftOutCount },
+              )}
+            </p>
+          )}
+          {isOtherQuantity && (
+            <p className="group-kept">
+              {i18n.t(
+                "A survey’s samples are energy levels, and the rules here count a dose: its values have no share above them.",
+              )}
             </p>
           )}
           {basis.keptReasons.map((reason) => (
             <p key={reason} className="group-kept">
-              <b>{i18n.t("Kept: {reason}.", { reason })}</b>{" "}
+              <b>{i18n.t("Kept: {reason}.", { reason: withoutStop(reason) })}</b>{" "}
               {i18n.t("The result no longer bears the standard’s name.")}
             </p>
           ))}
-          {statistics ? (
-            <Statistics statistics={statistics} />
-          ) : (
+          {blocks.every(({ statistics }) => statistics === null) && (
             <Empty title={i18n.t("No day was measured on a member in the last 12 months.")}>
               {i18n.t(
                 "A dosimeter worn over a shift, or a survey by job or full days, gives samples.",
@@ -134,6 +143,14 @@ export function Component() {
             </Empty>
           )}
         </Section>
+        {blocks.map((block, place) => (
+          <GroupFigures
+            key={`${block.quantity} ${block.exchangeRateDb} ${block.thresholdDb}`}
+            block={block}
+            place={place}
+          />
+        ))}
+        {mainBlock?.statistics && <MembersAlike statistics={mainBlock.statistics} />}
       </PageBody>
       <Folio>
         {i18n.t("{ruleSet}. Levels without protection, taken as normally distributed.", {

@@ -3,9 +3,10 @@ import { useQuery } from "@tanstack/react-query";
 import { useEffect, useRef, useState } from "react";
 import { useParams } from "react-router-dom";
 import { formatInstant } from "../../shared/format/date";
+import { formatDuration } from "../../shared/format/duration";
 import { formatNumber } from "../../shared/format/number";
-import { issueText } from "../../shared/problems/issue-text";
 import type { HistoryHead, HistoryImportView } from "../../shared/schemas/history";
+import { likelyCovers, shiftDoubt } from "../../shared/schemas/run-doubts";
 import { Button, ButtonLink } from "../components/button";
 import { Failed } from "../components/failed";
 import { Field } from "../components/form";
@@ -25,6 +26,7 @@ import {
 } from "../features/histories/imports";
 import { draftOf, type MappingDraft, toMapping } from "../features/histories/mapping";
 import { MappingForm } from "../features/histories/mapping-form";
+import { doubtSentence } from "../features/outings/doubt-words";
 import { ApiError } from "../lib/api";
 import { useLocale } from "../lib/i18n";
 import { paths } from "../paths";
@@ -255,16 +257,24 @@ function Mapping({ view, head }: { view: HistoryImportView; head: HistoryHead })
 
 function StoreForm({ view }: { view: HistoryImportView }) {
   const { i18n } = useLingui();
-  const [covers, setCovers] = useState<"shift" | "projected" | "part">("shift");
+  const locale = useLocale();
+  const { report, shift } = view;
+  const durationMin = report ? (report.valuesCount * (report.intervalMs ?? 0)) / 60_000 : 0;
+  const [covers, setCovers] = useState(() => likelyCovers(shift, durationMin));
+  const [isMissing, setMissing] = useState(false);
   const [reason, setReason] = useState("");
   const store = useStoreImport(view.id);
-  const doubts =
+  const refused =
     store.error instanceof ApiError
       ? store.error.issues.filter(({ path }) => path === "keptReason")
       : [];
+  const ofShift = covers === null ? null : shiftDoubt({ covers, shift, durationMin });
+  const doubts = ofShift
+    ? [ofShift, ...refused.filter(({ code }) => code !== ofShift.code)]
+    : refused;
   const isDoubtful =
     doubts.length > 0 ||
-    (view.report?.channels ?? []).some(({ overRange, underRange }) => overRange + underRange > 0);
+    (report?.channels ?? []).some(({ overRange, underRange }) => overRange + underRange > 0);
   const choices = [
     ["shift", i18n.t("the shift")],
     ["projected", i18n.t("a part; the rest was like it")],
@@ -277,10 +287,26 @@ function StoreForm({ view }: { view: HistoryImportView }) {
       aria-label={i18n.t("Store the history")}
       onSubmit={(event) => {
         event.preventDefault();
-        store.mutate({ covers, keptReason: reason.trim() === "" ? null : reason.trim() });
+        setMissing(covers === null);
+        if (covers === null) return;
+        const keptReason = !isDoubtful || reason.trim() === "" ? null : reason.trim();
+        store.mutate({ covers, keptReason });
       }}
     >
-      <Field label={i18n.t("It covers")} isGroup error={undefined}>
+      <Field
+        label={i18n.t("It covers")}
+        isGroup
+        note={
+          shift
+            ? i18n.t("{duration} long; the shift lasts from {from} to {to}.", {
+                duration: formatDuration(durationMin, locale),
+                from: shift.from,
+                to: shift.to,
+              })
+            : i18n.t("No shift of the worker is known for that day.")
+        }
+        error={isMissing && covers === null ? i18n.t("Choose what it covers.") : undefined}
+      >
         {() =>
           choices.map(([value, label]) => (
             <label key={value} className="choice">
@@ -288,7 +314,10 @@ function StoreForm({ view }: { view: HistoryImportView }) {
                 type="radio"
                 name="covers"
                 checked={covers === value}
-                onChange={() => setCovers(value)}
+                onChange={() => {
+                  setCovers(value);
+                  store.reset();
+                }}
               />
               <span>{label}</span>
             </label>
@@ -300,7 +329,11 @@ function StoreForm({ view }: { view: HistoryImportView }) {
           label={i18n.t("Why it is kept")}
           note={i18n.t("Whatever uses this run then loses the standard’s name.")}
           error={
-            doubts.length > 0 ? doubts.map((doubt) => issueText(i18n, doubt)).join(" ") : undefined
+            doubts.length > 0
+              ? doubts
+                  .map(({ code, params }) => doubtSentence(i18n, code, params, locale))
+                  .join(" ")
+              : undefined
           }
         >
           {(wires) => (
@@ -314,7 +347,7 @@ function StoreForm({ view }: { view: HistoryImportView }) {
           )}
         </Field>
       )}
-      {doubts.length === 0 && <FormProblem error={store.error} />}
+      {refused.length === 0 && <FormProblem error={store.error} />}
       <div className="form-actions">
         <Button type="submit" kind="primary" isBusy={store.isPending}>
           {i18n.t("Store all of it")}

@@ -174,12 +174,16 @@ function NewImportForm() {
         onSuccess: ({ id }) => navigate(paths.historyImport(id)),
         onError: (error) => {
           const ofFile =
-            error instanceof ApiError && error.issues.some(({ path }) => path === "file");
+            error instanceof ApiError
+              ? error.issues.find(({ path }) => path === "file")
+              : undefined;
           if (ofFile)
             setFileError(
-              i18n.t(
-                "This file can’t be read as a history. Send text, or a workbook without macros.",
-              ),
+              ofFile.code === "file-without-values"
+                ? i18n.t("There is no line with values in this file.")
+                : i18n.t(
+                    "This file can’t be read as a history. Send text, or a workbook without macros.",
+                  ),
             );
           else showIssuesOn(form, i18n)(error);
         },

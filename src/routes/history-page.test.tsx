@@ -53,6 +53,8 @@ const history = (overrides: Partial<HistoryView> = {}): HistoryView => ({
   keptReason: null,
   isVoid: false,
   revision: 2,
+  authorName: "S. Ferrand",
+  savedAt: "2026-11-30T15:02:00.000Z",
   can: { change: true },
   ...overrides,
 });
@@ -99,6 +101,7 @@ const analysis: HistoryAnalysis = {
       sharePct: 81.6,
     },
   ],
+  rest: { durationS: 24_600, laeqDb: 84.7, dosePct: 18, sharePct: 18.4 },
   distribution: [
     { fromDb: 70, sharePct: 40 },
     { fromDb: 71, sharePct: 60 },
@@ -217,7 +220,7 @@ describe("drawing without a pointer", () => {
     expect(within(form).getByLabelText("From")).toHaveValue("08:00");
     expect(within(form).getByLabelText("To")).toHaveValue("10:00");
     await user.click(within(form).getByRole("button", { name: "Draw it" }));
-    expect(await rowOf(/^Welding/)).toHaveTextContent("08:0010:00120");
+    expect(await rowOf(/^Welding/)).toHaveTextContent("08:0010:002 h");
     const stretches = [
       { kind: "task", taskId: grinding, fromS: 3600, toS: 7200 },
       { kind: "task", taskId: welding, fromS: 7200, toS: 14_400 },
@@ -291,6 +294,7 @@ describe("what was drawn and not saved", () => {
     });
     expect(within(dialog).getByText("Welding")).toBeVisible();
     expect(within(dialog).getByText("Grinding")).toBeVisible();
+    expect(dialog).toHaveTextContent("Saved by S. Ferrand, 30 November 2026, 15:02.");
     await userEvent.click(within(dialog).getByRole("button", { name: "Keep revision 2" }));
     expect(screen.queryByRole("dialog")).toBeNull();
     expect(localStorage).toHaveLength(0);

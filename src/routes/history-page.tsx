@@ -3,7 +3,7 @@ import { useLingui } from "@lingui/react";
 import { useQuery, useQueryClient } from "@tanstack/react-query";
 import { useMemo, useState } from "react";
 import { useParams } from "react-router-dom";
-import { formatDate } from "../../shared/format/date";
+import { formatDate, formatInstant } from "../../shared/format/date";
 import { formatDuration } from "../../shared/format/duration";
 import { formatLevel } from "../../shared/format/level";
 import { formatNumber } from "../../shared/format/number";
@@ -44,6 +44,7 @@ import {
   clockOf,
   criterionText,
   doseText,
+  lengthText,
   rangeText,
 } from "../features/histories/history-words";
 import { CHANNEL_SYMBOL } from "../features/histories/import-words";
@@ -152,6 +153,7 @@ function History({ history, error }: { history: HistoryView; error: unknown }) {
   const save = useRevisedSave<HistoryStretches, HistoryView>({
     path: () => `/histories/${id}/stretches`,
     schema: HistoryView,
+    toBody: ({ stretches }) => ({ stretches }),
     onSaved: (view) => void onSaved(view),
   });
   const sent = (stretches: readonly HistoryStretch[]): HistoryStretches => ({
@@ -251,15 +253,14 @@ function History({ history, error }: { history: HistoryView; error: unknown }) {
                 {i18n.t("The same as a table")}
               </a>
             }
-            lanes={({ span, widthPx }) => (
+            lanes={(place) => (
               <DrawingLanes
                 history={history}
                 clock={clock}
                 drawing={drawing}
                 editing={editing}
                 taskNames={taskNames}
-                span={span}
-                widthPx={widthPx}
+                {...place}
               />
             )}
           />
@@ -328,6 +329,9 @@ function History({ history, error }: { history: HistoryView; error: unknown }) {
           title={i18n.t("Someone saved these brackets before you")}
           conflict={{ mine: partsOf(conflict.mine.stretches), saved: conflict.saved }}
           toBody={({ stretches }) => partsOf(stretches)}
+          savedBy={({ authorName, savedAt, timeZone }) =>
+            [authorName, formatInstant(savedAt, timeZone, locale)].filter(Boolean).join(", ")
+          }
           fields={conflictFields(i18n, clock, { ...taskNames, ...conflict.saved.taskNames })}
           isSaving={save.isSaving}
           onSave={({ tasks: chosen, leftOut: without }, revision) =>
@@ -378,10 +382,7 @@ function headText(i18n: I18n, { counted, everything }: HistoryAnalysis, locale: 
   if (outS > 0)
     parts.push(
       i18n.t("{duration} left out", {
-        duration:
-          outS < 60
-            ? i18n.t("{seconds} s", { seconds: formatNumber(outS, 0, locale) })
-            : formatDuration(outS / 60, locale),
+        duration: lengthText(i18n, outS, locale),
       }),
     );
   return `${parts.join("; ")}.`;

@@ -2,7 +2,7 @@ import { useLingui } from "@lingui/react";
 import { useInfiniteQuery, useQuery } from "@tanstack/react-query";
 import { useState } from "react";
 import { useParams } from "react-router-dom";
-import { formatInstant, formatShortDate } from "../../shared/format/date";
+import { formatDate, formatInstant, formatShortDate, localDateOf } from "../../shared/format/date";
 import { formatDuration } from "../../shared/format/duration";
 import { formatLevelChange } from "../../shared/format/level";
 import type { CalibrationHistory, CalibrationView } from "../../shared/schemas/outing";
@@ -65,6 +65,17 @@ export function Component() {
   const hasFailed = latest?.hasPassed === false;
   const inDoubt = history.data?.inDoubt ?? [];
   const results = inDoubt.reduce((sum, { resultsCount }) => sum + resultsCount, 0);
+  const hangsOnIt = new Set(inDoubt.map(({ runId }) => runId));
+  const wordsAgainst = (runId: string, doubts: RunView["doubts"]) => [
+    ...doubts.map((code) => doubtWord(i18n, code)),
+    ...(latest && hangsOnIt.has(runId) && !doubts.includes("calibration-failed")
+      ? [
+          i18n.t("failed its calibration on {date}", {
+            date: formatShortDate(latest.doneOn, locale),
+          }),
+        ]
+      : []),
+  ];
   return (
     <>
       <PageBody
@@ -147,7 +158,7 @@ export function Component() {
                       date: formatInstant(history.data.lastGoodCheckAt, timeZone, locale),
                     })
                   : i18n.t("It last passed a calibration on {date}.", {
-                      date: formatInstant(history.data.lastGoodCheckAt, timeZone, locale),
+                      date: formatDate(localDateOf(history.data.lastGoodCheckAt, timeZone), locale),
                     })
                 : i18n.t("No check that was in order is on record.")}{" "}
               {i18n.t(
@@ -328,12 +339,12 @@ export function Component() {
               {
                 id: "doubts",
                 head: i18n.t("What speaks against it"),
-                cell: ({ doubts, keptReason }) =>
-                  doubts.length === 0 ? (
+                cell: ({ id, doubts, keptReason }) =>
+                  wordsAgainst(id, doubts).length === 0 ? (
                     "–"
                   ) : (
                     <span className="two-lines">
-                      <span>{doubts.map((code) => doubtWord(i18n, code)).join(", ")}</span>
+                      <span>{wordsAgainst(id, doubts).join(", ")}</span>
                       {keptReason && (
                         <span className="beneath">
                           {i18n.t("kept: {reason}", { reason: keptReason })}

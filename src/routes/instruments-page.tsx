@@ -139,6 +139,14 @@ export function Component() {
               sortValue: ({ calibrationDueOn }) => calibrationDueOn,
               cell: (row) => {
                 const days = dueIn(row);
+                if (row.calibrationFailedOn !== null)
+                  return (
+                    <span className="is-fault">
+                      {i18n.t("failed its calibration on {date}", {
+                        date: formatShortDate(row.calibrationFailedOn, locale),
+                      })}
+                    </span>
+                  );
                 if (row.calibrationDueOn === null || days === null)
                   return <span className="not-assessed">{i18n.t("not known")}</span>;
                 const words = dueWords(days);

@@ -14,6 +14,7 @@ import { ReportProblem } from "../features/me/report-problem";
 import { whatToDo } from "../features/me/what-to-do";
 import { useUser } from "../features/session/session";
 import { useLocale } from "../lib/i18n";
+import { usePageTitle } from "../lib/page-title";
 import "../styles/me.css";
 
 /** A longer title is set smaller: a phone holds about three lines of the large one. */
@@ -23,6 +24,7 @@ const LONG_TITLE = 64;
 export function Component() {
   const { i18n } = useLingui();
   const { workerId } = useUser();
+  usePageTitle(i18n.t("My page"));
   if (workerId === null)
     return (
       <PageBody size="worker">
@@ -91,7 +93,9 @@ function OwnPage({ workerId }: { workerId: string }) {
           </p>
         ))}
         <Section title={i18n.t("My protectors")} id="my-protectors">
-          {part(<MyProtectors protectors={protectors ?? []} lastDay={lastDay} />)}
+          {part(
+            <MyProtectors workerId={workerId} protectors={protectors ?? []} lastDay={lastDay} />,
+          )}
         </Section>
         <Section title={i18n.t("My last shift")} id="my-last-shift">
           {part(<LastShift day={lastDay} />)}

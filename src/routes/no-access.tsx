@@ -98,7 +98,7 @@ function NoRole({ name }: { name: string }) {
           </FormActions>
         </Form>
       </Section>
-      <p>
+      <p className="mt-6">
         <TextButton onClick={() => void signOut()}>
           {i18n.t("Sign out and use another sign-in")}
         </TextButton>

@@ -184,6 +184,7 @@ export function Component() {
                 }}
                 row={row}
                 date={date}
+                isPast={date < today}
                 timeZone={timeZone}
                 surveyId={search.get("survey")}
                 canChange={board.data?.can.change ?? false}

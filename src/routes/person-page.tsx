@@ -137,7 +137,11 @@ function SignInFacts({ person, timeZone }: { person: UserView; timeZone: string 
           {
             key: "bound",
             label: i18n.t("Bound to a sign-in"),
-            value: isBound ? i18n.t("yes") : i18n.t("not yet"),
+            value: (
+              <span className="whitespace-nowrap">
+                {isBound ? i18n.t("yes") : i18n.t("not yet")}
+              </span>
+            ),
           },
         ]}
       />

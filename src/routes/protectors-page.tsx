@@ -12,6 +12,7 @@ import { hasRole, useUser } from "../features/session/session";
 import { useLocale } from "../lib/i18n";
 import { protectorKindWord } from "../lib/register-words";
 import { paths } from "../paths";
+import { ProtectorWays } from "./protector-frame";
 
 type Group = "passive" | "active" | "archived";
 
@@ -47,6 +48,7 @@ export function Component() {
     <>
       <PageBody>
         <PageHead
+          way={<ProtectorWays />}
           title={i18n.t("Protectors")}
           lead={
             data &&

@@ -5,6 +5,7 @@ import { useParams } from "react-router-dom";
 import { formatDate, formatInstant } from "../../shared/format/date";
 import { formatDuration } from "../../shared/format/duration";
 import { formatNumber } from "../../shared/format/number";
+import { recordingText } from "../../shared/recordings/recording-text";
 import type { RecordingView } from "../../shared/schemas/recording";
 import { localDate } from "../../shared/time/zone";
 import { Button } from "../components/button";
@@ -18,7 +19,6 @@ import { AudioNote, KeepForm } from "../features/recordings/audio-note";
 import { FaultQuestion } from "../features/recordings/fault-question";
 import { isAtWork, recordingQueries, useCancelRecording } from "../features/recordings/queries";
 import { RecordingLevelsView } from "../features/recordings/recording-levels";
-import { recordingText } from "../features/recordings/recording-text";
 import {
   calibrationText,
   megabytes,

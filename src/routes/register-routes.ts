@@ -2,12 +2,19 @@ import { paths } from "../paths";
 import type { PageRoute } from "./page-route";
 
 export const registerRoutes: PageRoute[] = [
-  { path: paths.protectors, lazy: () => import("./protectors-page") },
+  {
+    path: paths.protectors,
+    lazy: () => import("./protectors-page"),
+    roles: ["officer", "auditor"],
+  },
   { path: paths.newProtector, lazy: () => import("./protector-form-page"), roles: ["officer"] },
+  { path: paths.fitting, lazy: () => import("./fitting-page"), roles: ["officer"] },
+  { path: paths.fittingOf(":workerId"), lazy: () => import("./fitting-page"), roles: ["officer"] },
+  { path: paths.fits, lazy: () => import("./fits-page"), roles: ["officer", "auditor"] },
   { path: paths.protector(":id"), lazy: () => import("./protector-page") },
   { path: paths.tasks, lazy: () => import("./tasks-page") },
   { path: paths.task(":id"), lazy: () => import("./task-page") },
-  { path: paths.rules, lazy: () => import("./rules-page") },
+  { path: paths.rules, lazy: () => import("./rules-page"), roles: ["officer", "auditor"] },
   { path: paths.site(":id"), lazy: () => import("./site-rules-page") },
   { path: paths.areas, lazy: () => import("./areas-page") },
   { path: paths.jobs, lazy: () => import("./jobs-page") },

@@ -4,6 +4,7 @@ import { lazy, Suspense } from "react";
 import { useParams } from "react-router-dom";
 import { formatDate } from "../../shared/format/date";
 import { formatLevel, formatLimit } from "../../shared/format/level";
+import { isolate } from "../../shared/i18n/isolate";
 import { ruleSetVersion } from "../../shared/rule-sets";
 import type { ResultView } from "../../shared/schemas/result";
 import {
@@ -19,6 +20,7 @@ import { Folio, PageBody, PageHead } from "../components/page";
 import { groundOf } from "../components/strip-of-day";
 import { dayResultQuery, storedResultQuery } from "../features/results/queries";
 import { ResultFacts } from "../features/results/result-facts";
+import { OfficeLink } from "../features/session/office-link";
 import { hasRole, useUser } from "../features/session/session";
 import { useLocale } from "../lib/i18n";
 import { useIsPhone } from "../lib/use-is-phone";
@@ -66,7 +68,7 @@ export function Component() {
           <b>Dinward</b>
           <span>
             {data &&
-              `${data.worker.name}, ${data.worker.employeeNumber} · ${formatDate(data.date, locale)}`}
+              `${isolate(data.worker.name)}, ${data.worker.employeeNumber} · ${formatDate(data.date, locale)}`}
           </span>
           <span>{data && i18n.t("Working {name}", { name: workingName(data.id) })}</span>
         </div>
@@ -78,14 +80,14 @@ export function Component() {
               <>
                 {canListWorkers && (
                   <>
-                    <TextLink to={paths.workers}>{i18n.t("Workers")}</TextLink> /{" "}
+                    <OfficeLink to={paths.workers}>{i18n.t("Workers")}</OfficeLink> /{" "}
                   </>
                 )}
                 {data && (
                   <>
                     <TextLink
                       to={paths.worker(data.worker.id)}
-                    >{`${data.worker.name}, ${data.worker.employeeNumber}`}</TextLink>{" "}
+                    >{`${isolate(data.worker.name)}, ${data.worker.employeeNumber}`}</TextLink>{" "}
                     / {dayWords(i18n, locale, data)}
                   </>
                 )}

@@ -492,6 +492,10 @@ function CorrectRun({
   const change = useRevisedSave<RunCorrection, RunView>({
     path: () => `/runs/${run.id}`,
     schema: RunView,
+    toBody: (stored) => {
+      const { reason: _, ...facts } = bodyOf(stored);
+      return facts;
+    },
     onSaved: (next) => {
       saved(next);
       onDone();

@@ -2,17 +2,20 @@ import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { useEffect, useRef, useState } from "react";
 import { useSearchParams } from "react-router-dom";
+import { formatDay, formatDayMonth, formatTime } from "../../shared/format/date";
 import { formatDuration } from "../../shared/format/duration";
 import { formatLevel } from "../../shared/format/level";
 import type { FileView } from "../../shared/schemas/outing";
 import type { RunView } from "../../shared/schemas/run";
 import { findRunDoubts, LEAST_SAMPLE_MIN } from "../../shared/schemas/run-doubts";
+import { leastSampleMin } from "../../shared/schemas/survey";
 import { localDate } from "../../shared/time/zone";
 import { Button, ButtonLink } from "../components/button";
 import { ComboboxField } from "../components/combobox-field";
 import { Failed } from "../components/failed";
 import {
   CheckField,
+  DateField,
   DurationField,
   Form,
   NumberField,
@@ -21,15 +24,17 @@ import {
   showIssuesOn,
   TextAreaField,
   TextField,
+  TimeField,
   useSchemaForm,
 } from "../components/form";
 import { FormProblem } from "../components/form-problem";
-import { TextLink } from "../components/link";
+import { TextButton, TextLink } from "../components/link";
 import { Folio, PageBody, PageHead } from "../components/page";
 import { SpectrumField, useSpectrumCheck } from "../components/spectrum-field";
 import { instrumentQueries } from "../features/instruments/queries";
 import { doubtSentence } from "../features/outings/doubt-words";
 import { FileInput } from "../features/outings/file-input";
+import { type Overlap, overlapOf } from "../features/outings/overlap";
 import { outingQueries, useRecordSample } from "../features/outings/queries";
 import {
   createSampleDraftStore,
@@ -38,9 +43,11 @@ import {
   nextOf,
   type SampleDraft,
   timerText,
+  toSend,
 } from "../features/outings/sample-draft";
 import {
   emptySample,
+  hasFigures,
   SampleFields,
   type SampleValues,
   startOf,
@@ -68,6 +75,12 @@ export function Component() {
   const instruments = useQuery(instrumentQueries.list());
   const [store] = useState(() => createSampleDraftStore(localStorage, user.id));
   const [kept] = useState(() => store.read());
+  // What was measured of one task is not handed on to another.
+  const waits =
+    kept !== null &&
+    (kept.timerStartedAt !== null || hasFigures({ ...emptySample, ...kept.values }));
+  const [isDiscarding, setDiscarding] = useState(false);
+  const [isMoreOpen, setMoreOpen] = useState(kept?.values.takenOn != null);
   const [files, setFiles] = useState<readonly FileView[]>(kept?.files ?? []);
   const [timerStartedAt, setTimerStartedAt] = useState(kept?.timerStartedAt ?? null);
   const pending = useRef<SampleDraft["pending"]>(kept?.pending ?? null);
@@ -76,10 +89,11 @@ export function Component() {
   const record = useRecordSample();
   const form = useSchemaForm(SampleFields, {
     mode: "onSubmit",
+    keepAs: null,
     defaultValues: {
       ...emptySample,
       ...kept?.values,
-      ...(search.get("task") ? { taskId: search.get("task") } : {}),
+      ...(search.get("task") && !waits ? { taskId: search.get("task") } : {}),
     },
   });
   const values = form.watch() as SampleValues;
@@ -101,16 +115,35 @@ export function Component() {
       !isArchived && (targets.length === 0 || targets.some(({ taskId }) => taskId === id)),
   );
   const task = offered.find(({ id }) => id === values.taskId);
-  const leastMin =
-    targets.find(({ taskId }) => taskId === values.taskId)?.sampleMin ?? LEAST_SAMPLE_MIN;
+  const target = targets.find(({ taskId }) => taskId === values.taskId);
+  const nominal = survey.data?.nominalDay.filter(({ taskId }) => taskId === values.taskId) ?? [];
+  const leastMin = target
+    ? leastSampleMin(
+        "task",
+        target,
+        nominal.length === 0
+          ? null
+          : nominal.reduce((sum, { durationMin }) => sum + durationMin, 0),
+        1,
+      )
+    : LEAST_SAMPLE_MIN;
   const asFigure = (value: unknown) => (typeof value === "number" ? value : null);
+  const timeZone = site?.timeZone ?? "UTC";
+  const start = startOf(values, now, timeZone);
+  const startsAt = start?.kind === "at" ? start.instant : null;
   const doubts = findRunDoubts({
     checkBeforeDb: asFigure(values.checkBeforeDb),
     checkAfterDb: asFigure(values.checkAfterDb),
-    date: localDate(new Date(), site?.timeZone ?? "UTC"),
-    calibration: { dueOn: instrument?.calibrationDueOn ?? null, failedOn: null },
+    date: localDate(startsAt === null ? now : new Date(startsAt), timeZone),
+    calibration: {
+      dueOn: instrument?.calibrationDueOn ?? null,
+      failedOn: instrument?.calibrationFailedOn ?? null,
+    },
     durationMin: asFigure(values.durationMin),
     leastMin,
+    needsChecks: true,
+    covers: "part",
+    shift: null,
     shown: [
       ...(values.isClipped ? (["clipped"] as const) : []),
       ...(values.isUnderRange ? (["under-range"] as const) : []),
@@ -129,6 +162,8 @@ export function Component() {
       return;
     }
     form.setValue("startedAt", timerStartedAt);
+    form.setValue("takenOn", null);
+    form.setValue("takenFrom", null);
     form.setValue("durationMin", elapsedMin(timerStartedAt, new Date()), { shouldDirty: true });
     form.clearErrors("durationMin");
     setTimerStartedAt(null);
@@ -144,24 +179,34 @@ export function Component() {
       return;
     }
     if (!spectrum.isSettled()) return;
-    const startedAt = filled.startedAt ?? startOf(filled.durationMin as number, new Date());
-    form.setValue("startedAt", startedAt);
-    const body = toSampleInput(filled, {
-      startedAt,
+    const begun = startOf(filled, new Date(), timeZone);
+    if (begun?.kind !== "at") {
+      setMoreOpen(true);
+      form.setError(
+        "takenFrom",
+        {
+          message:
+            begun?.kind === "twice"
+              ? i18n.t("The clock was set back: this time came twice. Choose another one.")
+              : i18n.t("The clock was set forward: this time never came that day."),
+        },
+        { shouldFocus: true },
+      );
+      return;
+    }
+    const given = toSampleInput(filled, {
+      startedAt: begun.instant,
       surveyId,
-      timeZone: site?.timeZone ?? "UTC",
+      timeZone,
       fileIds: files.map(({ id }) => id),
+      isDoubtful: asked.length > 0,
     });
-    const text = JSON.stringify(body);
-    if (pending.current?.body !== text) pending.current = { key: newChangeKey(), body: text };
-    store.write({
-      values: { ...filled, startedAt },
-      files,
-      timerStartedAt,
-      pending: pending.current,
-    });
+    const isDerived = filled.startedAt === null && filled.takenFrom === null;
+    const sent = toSend(given, isDerived, pending.current, newChangeKey);
+    pending.current = sent.pending;
+    store.write({ values: filled, files, timerStartedAt, pending: pending.current });
     record.mutate(
-      { body, key: pending.current.key },
+      { body: sent.body, key: sent.pending.key },
       {
         onSuccess: (run) => {
           pending.current = null;
@@ -170,8 +215,11 @@ export function Component() {
           setServerDoubts([]);
         },
         onError: (error) => {
-          if (error instanceof ApiError)
+          if (error instanceof ApiError) {
+            // Refused, and not lost on the way: it is another sample when it is sent again.
+            if (error.status < 500) pending.current = null;
             setServerDoubts(error.issues.filter(({ path }) => path === "keptReason"));
+          }
           showIssuesOn(form, i18n)(error);
         },
       },
@@ -181,10 +229,27 @@ export function Component() {
   function goOn(next: SampleValues) {
     setSaved(null);
     setFiles([]);
+    setServerDoubts([]);
+    setTimerStartedAt(null);
+    setDiscarding(false);
+    pending.current = null;
     record.reset();
     form.reset(next);
     window.scrollTo(0, 0);
   }
+
+  const wantedTask = (tasks.data?.rows ?? []).find(({ id }) => id === search.get("task")) ?? null;
+  const isUnsaved = timerStartedAt !== null || hasFigures(values);
+  function startEmpty() {
+    store.write(null);
+    goOn({ ...emptySample, taskId: wantedTask?.id ?? null, instrumentId: values.instrumentId });
+  }
+  const overlap = overlapOf(record.error);
+  const overlapTimes = ({ from, to }: Overlap) => {
+    const at = (instant: string) =>
+      `${formatDayMonth(localDate(new Date(instant), timeZone), locale)}, ${formatTime(instant, timeZone)}`;
+    return { from: at(from), to: to === null ? i18n.t("now") : at(to) };
+  };
 
   if (saved) {
     const [reading] = saved.readings;
@@ -234,12 +299,41 @@ export function Component() {
             title={i18n.t("Sample by hand")}
             lead={kept ? i18n.t("Kept on this phone until it is saved.") : undefined}
           />
+          {isUnsaved && (
+            <div className="sample-draft">
+              {wantedTask !== null && wantedTask.id !== values.taskId && (
+                <p>
+                  {i18n.t("A sample of {task} waits here and is not saved.", {
+                    task: task?.name ?? i18n.t("another task"),
+                  })}
+                </p>
+              )}
+              {isDiscarding ? (
+                <>
+                  <Button size="worker" autoFocus onClick={() => startEmpty()}>
+                    {i18n.t("Discard what is typed")}
+                  </Button>
+                  <Button size="worker" onClick={() => setDiscarding(false)}>
+                    {i18n.t("Keep it")}
+                  </Button>
+                </>
+              ) : (
+                <TextButton onClick={() => setDiscarding(true)}>
+                  {wantedTask !== null && wantedTask.id !== values.taskId
+                    ? i18n.t("Start empty, with {task}", { task: wantedTask.name })
+                    : i18n.t("Discard this draft")}
+                </TextButton>
+              )}
+            </div>
+          )}
           {tasks.error && <Failed error={tasks.error} onRetry={() => void tasks.refetch()} />}
           <Form
             labels="above"
             className="sample-form"
             aria-label={i18n.t("Sample by hand")}
-            onSubmit={form.handleSubmit(save)}
+            onSubmit={form.handleSubmit(save, ({ takenOn, takenFrom }) => {
+              if (takenOn || takenFrom) setMoreOpen(true);
+            })}
           >
             {user.sites.length > 1 && !surveyId && (
               <div className="field">
@@ -303,6 +397,20 @@ export function Component() {
                 />
               )}
             </div>
+            {timerStartedAt === null && startsAt !== null && (
+              <p className="sample-span">
+                {i18n.t("From {from} to {to}, {day}.", {
+                  from: formatTime(startsAt, timeZone),
+                  to: formatTime(
+                    new Date(
+                      Date.parse(startsAt) + (asFigure(values.durationMin) ?? 0) * 60_000,
+                    ).toISOString(),
+                    timeZone,
+                  ),
+                  day: formatDay(localDate(new Date(startsAt), timeZone), locale),
+                })}
+              </p>
+            )}
             <TextField
               form={form}
               name="place"
@@ -339,9 +447,27 @@ export function Component() {
               unit="dB"
               isOptional
             />
-            <details className="sample-more">
-              <summary>{i18n.t("More: C, peak, octave bands, worker")}</summary>
+            <details
+              className="sample-more"
+              open={isMoreOpen}
+              onToggle={(event) => setMoreOpen(event.currentTarget.open)}
+            >
+              <summary>{i18n.t("More: when, C, peak, octave bands, worker")}</summary>
               <div className="sample-form">
+                <DateField
+                  form={form}
+                  name="takenOn"
+                  label={i18n.t("Taken on")}
+                  note={i18n.t("Of a sample that is typed in later. Empty: today.")}
+                  isOptional
+                />
+                <TimeField
+                  form={form}
+                  name="takenFrom"
+                  label={i18n.t("Taken from")}
+                  note={i18n.t("The time at which it began. Empty: it ended just now.")}
+                  isOptional
+                />
                 <ComboboxField
                   form={form}
                   name="workerId"
@@ -406,7 +532,19 @@ export function Component() {
                 />
               </div>
             )}
-            <FormProblem error={record.error} />
+            {overlap ? (
+              <p className="field-error" role="alert">
+                {i18n.t(
+                  "The instrument has another run from {from} to {to}. Give the time of this sample under More, or choose another instrument.",
+                  overlapTimes(overlap),
+                )}{" "}
+                {overlap.runId && (
+                  <TextLink to={paths.run(overlap.runId)}>{i18n.t("Look at that run")}</TextLink>
+                )}
+              </p>
+            ) : (
+              <FormProblem error={record.error} />
+            )}
             <SubmitButton size="worker" isBusy={record.isPending}>
               {i18n.t("Save the sample")}
             </SubmitButton>
@@ -420,13 +558,12 @@ export function Component() {
   );
 }
 
-/** The present second, while somebody watches it. */
+/** The present moment: to the second while somebody watches it, else as often as a minute may turn. */
 function useNow(isRunning: boolean): Date {
   const [now, setNow] = useState(() => new Date());
   useEffect(() => {
-    if (!isRunning) return;
     setNow(new Date());
-    const timer = setInterval(() => setNow(new Date()), 1000);
+    const timer = setInterval(() => setNow(new Date()), isRunning ? 1000 : 15_000);
     return () => clearInterval(timer);
   }, [isRunning]);
   return now;

@@ -20,6 +20,7 @@ import { TextLink } from "../components/link";
 import { Folio, PageBody, PageHead, Section } from "../components/page";
 import { CorrectShift, taskWords, unaccountedWords } from "../features/results/shift-form";
 import { type Shift, shiftQuery, useShiftSaved } from "../features/results/shift-queries";
+import { OfficeLink } from "../features/session/office-link";
 import { workerQueries } from "../features/workers/queries";
 import { api } from "../lib/api";
 import { useLocale } from "../lib/i18n";
@@ -55,7 +56,7 @@ function ShiftSheet({ shift }: { shift: Shift }) {
         <PageHead
           way={
             <>
-              <TextLink to={paths.workers}>{i18n.t("Workers")}</TextLink> /{" "}
+              <OfficeLink to={paths.workers}>{i18n.t("Workers")}</OfficeLink> /{" "}
               <TextLink to={paths.worker(shift.workerId)}>{shift.workerName}</TextLink>
             </>
           }

@@ -1,13 +1,15 @@
 import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { lazy, Suspense, useState } from "react";
-import { Outlet, useLocation } from "react-router-dom";
+import { Outlet } from "react-router-dom";
+import { isolate } from "../../shared/i18n/isolate";
 import type { RoleName, SessionUser } from "../../shared/schemas/session";
 import { ConnectionBanner } from "../components/connection-banner";
 import { HeadPlace } from "../components/in-head";
 import { type NavItem, Page, RunningHead } from "../components/page";
 import { AccountActions } from "../features/session/account-actions";
 import { hasRole, useUser } from "../features/session/session";
+import { TypedBy } from "../lib/keep-typed";
 import { useIsPhone } from "../lib/use-is-phone";
 import { paths } from "../paths";
 
@@ -25,7 +27,7 @@ function useNavigation(user: SessionUser): NavItem[] {
     (officer || auditor) && { to: paths.findings, label: i18n.t("Findings") },
     (officer || auditor) && { to: paths.toMeasure, label: i18n.t("Measuring") },
     (officer || auditor) && { to: paths.protectors, label: i18n.t("Protectors") },
-    auditor && { to: paths.trail, label: i18n.t("Trail") },
+    (auditor || hasRole(user, "administrator")) && { to: paths.trail, label: i18n.t("Trail") },
     (officer || auditor) && { to: paths.rules, label: i18n.t("Rules") },
     hasRole(user, "administrator") && { to: paths.people, label: i18n.t("People") },
     hasRole(user, "administrator") && { to: paths.sites, label: i18n.t("Sites") },
@@ -65,21 +67,18 @@ export function SignedIn() {
   const { i18n } = useLingui();
   const user = useUser();
   const items = useNavigation(user);
-  const { pathname, search } = useLocation();
   const isPlain = items.length <= 1;
   // On the Crew sheet one line says whose it is and the time; a phone has the account at the foot of the page instead.
   const isSheet = isPlain && hasRole(user, "supervisor");
   const [place, setPlace] = useState<HTMLElement | null>(null);
   const isPhone = useIsPhone();
   const isAccountAtFoot = isSheet && isPhone;
-  const whoAndWhat = `${user.name}, ${roleWord(i18n, user.roles)}`;
+  const whoAndWhat = `${isolate(user.name)}, ${roleWord(i18n, user.roles)}`;
   return (
     <Page
       head={
         <>
-          <ConnectionBanner
-            signInTo={`${paths.signIn}?returnTo=${encodeURIComponent(pathname + search)}`}
-          />
+          <ConnectionBanner />
           <RunningHead
             items={isPlain ? [] : items}
             title={hasRole(user, "worker") && isPlain ? user.name : "Dinward"}
@@ -112,9 +111,11 @@ export function SignedIn() {
         </>
       }
     >
-      <HeadPlace value={isSheet ? place : undefined}>
-        <Outlet />
-      </HeadPlace>
+      <TypedBy value={user.id}>
+        <HeadPlace value={isSheet ? place : undefined}>
+          <Outlet />
+        </HeadPlace>
+      </TypedBy>
       {isAccountAtFoot && (
         <div className="foot-account">
           <b>{user.name}</b>

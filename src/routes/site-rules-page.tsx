@@ -8,6 +8,7 @@ import { RecomputeProgress } from "../components/change-preview";
 import { Failed } from "../components/failed";
 import { TextLink } from "../components/link";
 import { Folio, MarginNote, PageBody, PageHead, Section } from "../components/page";
+import { FitPolicy } from "../features/rules/fit-policy";
 import { ruleQueries } from "../features/rules/queries";
 import { RuleSetTable } from "../features/rules/rule-set-table";
 import { SettingsForm } from "../features/rules/settings-form";
@@ -112,6 +113,9 @@ export function Component() {
         )}
         <Section title={i18n.t("Rules by date")} id="by-date">
           <SettingsTable site={site} ruleSets={ruleSets} today={today} />
+        </Section>
+        <Section title={i18n.t("Fit tests")} id="fit-policy">
+          <FitPolicy key={site.revision} site={site} />
         </Section>
         {governing && (
           <Section title={i18n._(governing.title)} id="governing">

@@ -1,7 +1,9 @@
 import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
+import { useState } from "react";
 import { useNavigate, useParams, useSearchParams } from "react-router-dom";
 import { Strategy, type SurveyDetail } from "../../shared/schemas/survey";
+import { Button } from "../components/button";
 import { Empty } from "../components/empty";
 import { Failed } from "../components/failed";
 import { FilterRow, FilterSelect } from "../components/filter-row";
@@ -44,21 +46,37 @@ function NewSurvey() {
   const groups = (jobs.data?.rows ?? []).filter(({ isArchived, can }) => !isArchived && can.change);
   const job = groups.find(({ id }) => id === search.get("job"));
   const strategy = Strategy.safeParse(search.get("strategy")).data;
+  const [isDirty, setDirty] = useState(false);
+  const [asked, setAsked] = useState<string | null>(null);
+  const choose = (next: string) => {
+    setAsked(null);
+    setDirty(false);
+    setSearch(next === "" ? {} : { job: next }, { replace: true });
+  };
   const choices = (
-    <FilterRow label={i18n.t("Which group")}>
-      <FilterSelect
-        label={i18n.t("Group")}
-        value={job?.id ?? ""}
-        choices={[
-          { value: "", label: i18n.t("Choose a group") },
-          ...groups.map(({ id, name, siteId }) => ({
-            value: id,
-            label: choice.sites.length > 1 ? `${name}, ${choice.siteName(siteId)}` : name,
-          })),
-        ]}
-        onChange={(next) => setSearch(next === "" ? {} : { job: next }, { replace: true })}
-      />
-    </FilterRow>
+    <>
+      <FilterRow label={i18n.t("Which group")}>
+        <FilterSelect
+          label={i18n.t("Group")}
+          value={job?.id ?? ""}
+          choices={[
+            { value: "", label: i18n.t("Choose a group") },
+            ...groups.map(({ id, name, siteId }) => ({
+              value: id,
+              label: choice.sites.length > 1 ? `${name}, ${choice.siteName(siteId)}` : name,
+            })),
+          ]}
+          onChange={(next) => (isDirty ? setAsked(next) : choose(next))}
+        />
+      </FilterRow>
+      {asked !== null && (
+        <div className="survey-leave" role="alert">
+          <p>{i18n.t("Another group starts a new plan: what you typed here is not kept.")}</p>
+          <Button onClick={() => choose(asked)}>{i18n.t("Change the group")}</Button>
+          <Button onClick={() => setAsked(null)}>{i18n.t("Stay with this one")}</Button>
+        </div>
+      )}
+    </>
   );
   if (job)
     return (
@@ -68,6 +86,9 @@ function NewSurvey() {
         siteId={job.siteId}
         jobId={job.id}
         strategy={strategy}
+        purpose={search.get("purpose") ?? undefined}
+        taskIds={search.get("tasks")?.split(",")}
+        onDirty={setDirty}
         choices={choices}
       />
     );
@@ -90,12 +111,18 @@ function Planned({
   siteId,
   jobId,
   strategy,
+  purpose,
+  taskIds,
+  onDirty,
   choices,
 }: {
   survey: SurveyDetail | null;
   siteId: string;
   jobId: string;
   strategy?: Strategy;
+  purpose?: string;
+  taskIds?: readonly string[];
+  onDirty?: (isDirty: boolean) => void;
   choices?: React.ReactNode;
 }) {
   const { i18n } = useLingui();
@@ -128,6 +155,9 @@ function Planned({
             jobName={jobName}
             siteId={siteId}
             jobId={jobId}
+            purpose={purpose}
+            taskIds={taskIds}
+            onDirty={onDirty}
             today={choice.todayAt(siteId)}
             onSaved={({ id }) => void navigate(paths.survey(id))}
             onLeave={() => void navigate(survey ? paths.survey(survey.id) : paths.surveys)}

@@ -41,11 +41,9 @@ export function Component() {
       new Map(trail.data?.pages.flatMap((page) => page.names.map((thing) => [thing.id, thing]))),
     [trail.data],
   );
-  // What concerns no site, such as a person's sign-in, stands in the time of the reader's first.
+  // All rows in one zone, that of the reader's first site, so that their order shows; another site's own time beneath.
   const ownZone = sites[0]?.timeZone ?? "UTC";
   const zoneOf = ({ timeZone }: AuditEventView) => timeZone ?? ownZone;
-  const zones = new Set(rows.map(zoneOf));
-  const oneZone = zones.size > 1 ? null : ([...zones][0] ?? ownZone);
 
   const narrow = (about: string | null, one: string | null) => {
     const next = new URLSearchParams();
@@ -65,11 +63,15 @@ export function Component() {
     {
       id: "at",
       head: i18n.t("When"),
-      unit: oneZone,
+      unit: ownZone,
       cell: (event) => (
         <span className="event-time">
-          {formatInstant(event.at, zoneOf(event), locale)}
-          {oneZone === null && <span className="event-zone">{zoneOf(event)}</span>}
+          {formatInstant(event.at, ownZone, locale)}
+          {zoneOf(event) !== ownZone && (
+            <span className="event-zone">
+              {formatInstant(event.at, zoneOf(event), locale)} {zoneOf(event)}
+            </span>
+          )}
         </span>
       ),
     },
@@ -78,7 +80,11 @@ export function Component() {
       head: i18n.t("Who"),
       isRowHead: true,
       cell: ({ actorName }) =>
-        actorName ?? <span className="event-program">{i18n.t("the program")}</span>,
+        actorName === null ? (
+          <span className="event-program">{i18n.t("the program")}</span>
+        ) : (
+          <bdi>{actorName}</bdi>
+        ),
     },
     { id: "action", head: i18n.t("What"), cell: ({ action }) => actionWord(i18n, action) },
     {
@@ -119,7 +125,7 @@ export function Component() {
     {
       id: "event",
       head: i18n.t("Event"),
-      unit: oneZone,
+      unit: ownZone,
       cell: (event) => (
         <div className="event-stack">
           {wideColumns

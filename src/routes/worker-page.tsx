@@ -34,6 +34,12 @@ import { AssignForm, assignedUse } from "../features/assignments/assign-form";
 import { AssignmentsTable } from "../features/assignments/assignments-table";
 import { FindingsTable } from "../features/findings/findings-table";
 import { findingQueries } from "../features/findings/queries";
+import { FitTestActions } from "../features/fits/fit-test-actions";
+import { FitTestsTable } from "../features/fits/fit-tests-table";
+import { IssuesTable } from "../features/fits/issues-table";
+import { fitQueries } from "../features/fits/queries";
+import { Refusals } from "../features/fits/refusals";
+import { OfficeLink } from "../features/session/office-link";
 import { hasRole, useUser } from "../features/session/session";
 import { workerQueries } from "../features/workers/queries";
 import { SignInSlip } from "../features/workers/sign-in-slip";
@@ -41,6 +47,7 @@ import { employerWords } from "../features/workers/workers-table";
 import { useLocale } from "../lib/i18n";
 import { paths } from "../paths";
 import "../styles/findings.css";
+import "../styles/fits.css";
 import "../styles/worker.css";
 
 type Day = z.infer<typeof HistoryPage>["rows"][number];
@@ -116,7 +123,7 @@ function WorkerSheet({ worker }: { worker: WorkerView }) {
         }
       >
         <PageHead
-          way={<TextLink to={paths.workers}>{i18n.t("Workers")}</TextLink>}
+          way={<OfficeLink to={paths.workers}>{i18n.t("Workers")}</OfficeLink>}
           title={worker.name}
           lead={
             worker.leftOn
@@ -140,6 +147,7 @@ function WorkerSheet({ worker }: { worker: WorkerView }) {
         </div>
         <div className="beside-slip">
           <Protectors worker={worker} today={today} />
+          <Fits worker={worker} today={today} isOfficer={isOfficer} />
           <OpenFindings worker={worker} today={today} />
           <History worker={worker} />
         </div>
@@ -280,6 +288,72 @@ function Protectors({ worker, today }: { worker: WorkerView; today: string }) {
             />
           </div>
         ))}
+    </Section>
+  );
+}
+
+/** Fits, and what was handed out; refusals only to those who may read why. */
+function Fits({
+  worker,
+  today,
+  isOfficer,
+}: {
+  worker: WorkerView;
+  today: string;
+  isOfficer: boolean;
+}) {
+  const { i18n } = useLingui();
+  const tests = useInfiniteQuery(fitQueries.tests({ workerId: worker.id }));
+  const issues = useInfiniteQuery(fitQueries.issues({ workerId: worker.id }));
+  return (
+    <Section title={i18n.t("Fits and issues")} id="fits">
+      <FitTestsTable
+        hidesWorker
+        rows={tests.data?.pages.flatMap((page) => page.rows) ?? []}
+        state={tests.isError ? "failed" : tests.data ? "ready" : "loading"}
+        error={tests.error}
+        onRetry={() => void tests.refetch()}
+        more={{
+          hasMore: tests.hasNextPage,
+          isLoading: tests.isFetchingNextPage,
+          onMore: () => void tests.fetchNextPage(),
+        }}
+        actions={
+          worker.can.assign
+            ? (test) => test.can.change && <FitTestActions test={test} />
+            : undefined
+        }
+        empty={<Empty title={i18n.t("No fit of this worker is on record.")} />}
+      />
+      {worker.can.assign && worker.leftOn === null && (
+        <p className="after-table">
+          <ButtonLink to={paths.fittingOf(worker.id)}>{i18n.t("Fit and issue")}</ButtonLink>{" "}
+          <ButtonLink to={paths.microphoneCheck(worker.id)}>
+            {i18n.t("Two-microphone check")}
+          </ButtonLink>
+        </p>
+      )}
+      <h3 className="part-head">{i18n.t("Handed out")}</h3>
+      <IssuesTable
+        hidesWorker
+        today={today}
+        rows={issues.data?.pages.flatMap((page) => page.rows) ?? []}
+        state={issues.isError ? "failed" : issues.data ? "ready" : "loading"}
+        error={issues.error}
+        onRetry={() => void issues.refetch()}
+        more={{
+          hasMore: issues.hasNextPage,
+          isLoading: issues.isFetchingNextPage,
+          onMore: () => void issues.fetchNextPage(),
+        }}
+        empty={<Empty title={i18n.t("Nothing was handed out yet.")} />}
+      />
+      {isOfficer && (
+        <>
+          <h3 className="part-head">{i18n.t("Refusals and non-wear")}</h3>
+          <Refusals workerId={worker.id} today={today} />
+        </>
+      )}
     </Section>
   );
 }

@@ -50,16 +50,22 @@ export function Component() {
   );
 }
 
-/** All the year's rule sets have one limit: only then has the table one line for it. */
+/**
+ * All the year's rule sets have one limit: only then has the table one line for it. Without any limit at the ear there is
+ * nothing to count there.
+ */
 function useYearFrame(ruleSets: readonly { key: string; version: number }[] | undefined) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  return useMemo((): StripFrame | null => {
+  return useMemo((): { frame: StripFrame | null; hasLimitAtEar: boolean } => {
     const frames = (ruleSets ?? []).map(({ key, version }) =>
       stripFrame(i18n, locale, key, version),
     );
     const levels = new Set(frames.map(({ limits }) => limits[0]?.levelDb));
-    return levels.size === 1 ? (frames[0] ?? null) : null;
+    return {
+      frame: levels.size === 1 ? (frames[0] ?? null) : null,
+      hasLimitAtEar: frames.length === 0 || frames.some((frame) => frame.hasLimitAtEar),
+    };
   }, [ruleSets, i18n, locale]);
 }
 
@@ -84,7 +90,7 @@ function YearFile({
   useEffect(() => {
     if (isNothingThere) onNothingThere?.();
   }, [isNothingThere, onNothingThere]);
-  const frame = useYearFrame(gaps.data?.ruleSets);
+  const limits = useYearFrame(gaps.data?.ruleSets);
   const [said, setSaid] = useState("");
   const Months = useIsPhone() ? MonthsList : MonthsTable;
   const [isAsking, setIsAsking] = useState(false);
@@ -192,7 +198,7 @@ function YearFile({
             {i18n.t("Choose another year or another site.")}
           </Empty>
         ) : (
-          <Months year={year} months={gaps.data?.months} frame={frame} today={today} />
+          <Months year={year} months={gaps.data?.months} {...limits} today={today} />
         )}
         <div className="year-columns">
           <ColumnsTable />

@@ -1,4 +1,5 @@
 import { describe, expect, test } from "vitest";
+import { localDate, localTime } from "../../shared/time/zone";
 import {
   buildAssignment,
   buildCrew,
@@ -188,6 +189,55 @@ describe("a crew's day", () => {
       ),
     ).toEqual(["too_small"]);
     expect(await issuesOf(worked(cell, cell.kept.id), "2019-06-03")).toEqual(["before-hire"]);
+  });
+
+  test("a shift that has not ended is asked about, once", async () => {
+    const cell = await buildCell();
+    const client = await signInAs(cell.officer);
+    const zone = "Europe/London";
+    const startedAt = new Date(Date.now() - 60_000);
+    const save = (more: object) =>
+      client.post(`/crews/${cell.crew.id}/day`, {
+        date: localDate(startedAt, zone),
+        rows: [
+          worked(cell, cell.bare.id, {
+            localStart: localTime(startedAt, zone),
+            whichHour: "first",
+            ...more,
+          }),
+        ],
+      });
+    const asked = await save({});
+    expect(asked.body.refused[0].issues).toMatchObject([
+      {
+        path: ["lengthMin"],
+        code: "open-end-unconfirmed",
+        params: { time: expect.stringMatching(/^\d\d:\d\d$/) },
+      },
+    ]);
+    const { body } = await save({ confirmsOpenEnd: true });
+    expect(body.refused).toEqual([]);
+    // The same again is no change, and not asked about.
+    expect((await save({})).body).toMatchObject({ refused: [], conflicts: [] });
+    const { shiftId, revision } = body.saved[0].shift;
+    const correct = (more: object) =>
+      client.send({
+        method: "patch",
+        path: `/shifts/${shiftId}`,
+        body: {
+          localStart: localTime(startedAt, zone),
+          whichHour: "first",
+          lengthMin: 470,
+          unaccounted: { how: "unknown" },
+          tasks: [],
+          reason: "shorter",
+          ...more,
+        },
+        revision,
+      });
+    const open = await correct({});
+    expect([open.status, open.body.issues?.[0]?.code]).toEqual([422, "open-end-unconfirmed"]);
+    expect((await correct({ confirmsOpenEnd: true })).status).toBe(200);
   });
 
   test("a double click and a second tab change nothing; a newer revision is never overwritten", async () => {
@@ -447,7 +497,7 @@ describe("a crew's day", () => {
     for (const date of [yesterday, today]) {
       await officer.post(`/crews/${cell.crew.id}/day`, {
         date,
-        rows: [worked(cell, cell.kept.id)],
+        rows: [worked(cell, cell.kept.id, { confirmsOpenEnd: true })],
       });
       dates.push((await officer.get(`/crews/${cell.crew.id}/sheet`)).body.last.date);
     }

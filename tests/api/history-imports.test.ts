@@ -197,6 +197,55 @@ describe("from the file to the day", () => {
     expect(result?.outside_db).toBeCloseTo(90, 6);
   });
 
+  test("a file beside the shift is asked about, and covers it only with a reason", async () => {
+    const { site, client, worker, send } = await buildPlace();
+    const task = await buildTask({ site, levelDb: 70, metric: { kind: "steady" } });
+    await buildDay(worker, day);
+    await buildShift(worker, {
+      date: day,
+      localStart: "14:00",
+      tasks: [{ taskId: task.id, durationMin: 480 }],
+    });
+    const { body } = await send(historyText({ time: "07:00:00", count: 3600 }));
+    const asked = await read(client, site, body.id);
+    expect(codes(asked)).toEqual(["asked outside-shift"]);
+    expect(asked.body.report.issues[0].params).toEqual({ from: "14:00", to: "22:00" });
+    const answered = { mapping: historyMapping(), answers: ["outside-shift"] };
+    const ready = await read(client, site, body.id, answered);
+    expect(ready.body).toMatchObject({
+      state: "ready",
+      shift: { from: "14:00", to: "22:00", shiftMin: 480, insideMin: 0 },
+    });
+    const refused = await client.post(`/history-imports/${body.id}/store`, { covers: "shift" });
+    expect(refused.body.issues).toMatchObject([{ path: ["keptReason"], code: "outside-shift" }]);
+    await client.post(`/history-imports/${body.id}/store`, { covers: "part" });
+    await workOn(site, body.id);
+    const [run] = await select<{ covers: string; doubts: string[] }>(
+      "SELECT v.covers, v.doubts FROM runs r JOIN run_revisions v ON v.id = r.current_revision_id WHERE r.site_id = $1",
+      [site.id],
+    );
+    expect(run).toEqual({ covers: "part", doubts: [] });
+    const [result] = await select<{ outside_db: number }>(
+      `SELECT x.outside_db FROM days d JOIN day_results x ON x.id = d.current_result_id WHERE d.worker_id = $1 AND d.date = $2`,
+      [worker.id, day],
+    );
+    // The hour at 90 dB is another's: eight hours at a steady 70 dB.
+    expect(result?.outside_db ?? 70).toBeCloseTo(70, 6);
+  });
+
+  test("an hour of a shift covers it only with a reason", async () => {
+    const { site, client, worker, send } = await buildPlace();
+    await buildShift(worker, { date: day, tasks: [] });
+    const { body } = await send(historyText({ count: 3600 }));
+    await read(client, site, body.id);
+    const refused = await client.post(`/history-imports/${body.id}/store`, { covers: "shift" });
+    expect(refused.body.issues).toMatchObject([
+      { code: "shorter-than-shift", params: { coveredMin: 60, shiftMin: 480 } },
+    ]);
+    const stored = await client.post(`/history-imports/${body.id}/store`, { covers: "projected" });
+    expect(stored.status).toBe(202);
+  });
+
   test("the same file is refused with a link: while it waits, and once it is stored", async () => {
     const { site, client, send } = await buildPlace();
     const first = await send();

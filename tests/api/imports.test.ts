@@ -3,6 +3,7 @@ import { parse } from "csv-parse/sync";
 import request from "supertest";
 import { describe, expect, test } from "vitest";
 import { recomputeStaleDays } from "../../server/jobs/recompute-stale-days";
+import { localDate, localTime } from "../../shared/time/zone";
 import {
   buildCrew,
   buildInstrument,
@@ -261,6 +262,58 @@ describe("shifts from a file", () => {
     ).toHaveLength(0);
   });
 
+  test("what is wrong with a line is said whatever else is wrong with its shift", async () => {
+    const { client, site } = await buildShop();
+    const answer = await send(client, {
+      siteId: site.id,
+      content: [
+        HEADER,
+        `9999,${day},06:00,480,Склад,900,`,
+        `1041,2026-02-30,06:00,1440,No such task,240,101`,
+        `1041,2019-12-31,25:00,480,Склад,240,`,
+        `1041,2019-12-31,25:00,480,Склад,300,`,
+        `1041,${daysFromToday(2)},06:00,,Склад,-5,`,
+      ].join("\n"),
+      isDryRun: true,
+    });
+    const found = answer.body.issues.map(
+      ({ line, field, code }: { line: number; field: string; code: string }) => [line, field, code],
+    );
+    expect(found).toHaveLength(new Set(found.map(String)).size);
+    expect(found.map(String).toSorted()).toEqual(
+      [
+        [2, "employee_number", "worker-unknown"],
+        [2, "minutes", "tasks-longer-than-shift"],
+        [3, "date", "not-a-date"],
+        [3, "task", "task-unknown"],
+        [3, "worn_pct", "too_big"],
+        [3, "length_min", "whole-day-unconfirmed"],
+        [4, "date", "before-hire"],
+        [4, "start", "not-a-time"],
+        [4, "minutes", "tasks-longer-than-shift"],
+        [5, "task", "task-twice"],
+        [6, "date", "in-the-future"],
+        [6, "length_min", "empty"],
+        [6, "minutes", "too_small"],
+      ]
+        .map(String)
+        .toSorted(),
+    );
+  });
+
+  test("a shift that has not ended needs its confirmation", async () => {
+    const { client, site } = await buildShop();
+    const startedAt = new Date(Date.now() - 60_000);
+    const at = `${localDate(startedAt, "Europe/Berlin")},${localTime(startedAt, "Europe/Berlin")}`;
+    const header = "employee_number,date,start,length_min,task,minutes,which_hour,open_end";
+    const content = (openEnd: string) => `${header}\n1041,${at},480,Склад,480,first,${openEnd}`;
+    const asked = await send(client, { siteId: site.id, content: content("") });
+    expect(asked.body.report.issues).toMatchObject([
+      { line: 2, field: "length_min", code: "open-end-unconfirmed" },
+    ]);
+    expect((await send(client, { siteId: site.id, content: content("yes") })).status).toBe(201);
+  });
+
   test("a shift that meets one already stored is refused", async () => {
     const { client, site, content } = await buildShop();
     await send(client, { siteId: site.id, content });
@@ -417,6 +470,34 @@ describe("how a file may be written", () => {
     expect(answer.body.issues).toMatchObject([{ line: 2, code: "quote-broken" }]);
   });
 
+  test("a broken quote holds back its own line only, and a mark in plain text or a formula breaks nothing", async () => {
+    const { client, site } = await buildShop();
+    const answer = await send(client, {
+      siteId: site.id,
+      content: [
+        HEADER,
+        `1041,${day},06:00,480,3" pipe,240,`,
+        `1041,${daysFromToday(-4)},06:00,480,=HYPERLINK("x"),240,`,
+        `1041,${daysFromToday(-5)},06:00,480,"Скл"ад,240,`,
+        `1041,${daysFromToday(-6)},06:00,480,Склад,=HYPERLINK("x"),`,
+        `1041,${daysFromToday(-7)},06:00,480,"Склад,240,`,
+        `1041,${daysFromToday(-8)},06:00,480,Склад,240,`,
+      ].join("\n"),
+      isDryRun: true,
+    });
+    expect(answer.status).toBe(201);
+    const found = answer.body.issues.map(
+      ({ line, field, code }: { line: number; field: string; code: string }) => [line, field, code],
+    );
+    expect(found).toEqual([
+      [2, "task", "task-unknown"],
+      [3, "task", "task-unknown"],
+      [4, "", "quote-broken"],
+      [5, "minutes", "formula-in-number"],
+      [6, "", "quote-broken"],
+    ]);
+  });
+
   test("more than 20 MB is too large, and a form without a file is no import", async () => {
     const { client, site } = await buildShop();
     const large = await send(client, {
@@ -497,6 +578,38 @@ describe("readings from a file", () => {
     });
     expect(impossible.body.issues).toMatchObject([{ line: 2, field: "exchange_rate_db" }]);
   });
+});
+
+test("a run's readings are looked at though its instrument or its worker is unknown", async () => {
+  const { client, site } = await buildShop();
+  await buildInstrument({ site, serialNumber: "77-1" });
+  const header =
+    "employee_number,date,instrument_serial,duration_min,covers,check_before_db,check_after_db,criterion_level_db,exchange_rate_db,threshold_db,weighting,response,dose_pct,average_db,peak_db,peak_weighting";
+  const answer = await send(client, {
+    kind: "readings",
+    siteId: site.id,
+    content: [
+      header,
+      `1041,${day},none,480,shift,114.0,114.8,90,5,80,A,slow,112,,,`,
+      `1041,${day},none,480,shift,114.0,114.8,85,7,,A,slow,,198.1,138.2,C`,
+      `9999,${day},77-1,480,part,,,90,5,80,A,slow,abc,,,`,
+      `9999,${day},77-1,480,part,,,85,3,,A,slow,,,,`,
+    ].join("\n"),
+    isDryRun: true,
+  });
+  const found = answer.body.issues.map(
+    ({ line, field, code }: { line: number; field: string; code: string }) =>
+      [line, field, code].join(" "),
+  );
+  expect(found.toSorted()).toEqual([
+    "2 instrument_serial instrument-unknown",
+    "2 kept_reason field-check-drift",
+    "3 average_db too_big",
+    "3 exchange_rate_db invalid_union",
+    "4 dose_pct not-a-number",
+    "4 employee_number worker-unknown",
+    "5 average_db reading-empty",
+  ]);
 });
 
 describe("past years' levels from a file", () => {

@@ -265,7 +265,9 @@ describe("a group", () => {
       taskId: task.id,
       count: 3,
     });
-    expect(body.statistics).toBeNull();
+    expect(body.blocks).toEqual([
+      expect.objectContaining({ quantity: "lex-8h", statistics: null }),
+    ]);
   });
 
   test("says which task keeps it from having one", async () => {
@@ -315,7 +317,9 @@ describe("a group", () => {
         date: daysFromToday(-1 - index),
       });
     const { body } = await client.get(`/groups/${job.id}?surveyId=${survey.id}`);
-    expect(body.statistics).toMatchObject({
+    expect(body.blocks).toHaveLength(1);
+    const [{ statistics }] = body.blocks;
+    expect(statistics).toMatchObject({
       sampleCount: 6,
       workerCount: 2,
       meanDb: 90,
@@ -324,14 +328,81 @@ describe("a group", () => {
     });
     // sqrt((4·1 + 6·25) / 5); K(6) = 3.708 of the published table.
     const sdDb = Math.sqrt((2 * 2 + 6 * 25) / 5);
-    expect(body.statistics.sdDb).toBeCloseTo(sdDb, 9);
-    expect(body.statistics.toleranceLimitDb).toBeCloseTo(90 + 3.708 * sdDb, 2);
-    expect(
-      body.statistics.exceedances.map(({ levelDb }: { levelDb: number }) => levelDb),
-    ).toContain(80);
-    expect(body.statistics.plot[5]).toMatchObject({ workerName: "M. Loud", levelDb: 96 });
+    expect(statistics.sdDb).toBeCloseTo(sdDb, 9);
+    expect(statistics.toleranceLimitDb).toBeCloseTo(90 + 3.708 * sdDb, 2);
+    expect(statistics.exceedances.map(({ levelDb }: { levelDb: number }) => levelDb)).toContain(80);
+    expect(statistics.plot[5]).toMatchObject({ workerName: "M. Loud", levelDb: 96 });
     expect(body.budgets[1]).toMatchObject({ surveyId: survey.id });
+    expect(body.budgets[1]).toMatchObject({ belowRangeCount: 0, isAsInForce: false });
     // C.12: u1 is that standard deviation, more than 3.5 dB.
     expect(body.budgets[1].budget).toMatchObject({ strategy: "full-day", isScatterLarge: true });
+  });
+
+  test("under a rule of doses is described dose by dose, each against its own value", async () => {
+    const site = await buildSite({ governingRuleSet: "us-general-industry" });
+    const client = await officerAt(site);
+    const job = await buildJob({ site });
+    const worker = await buildWorker({ site, jobId: job.id });
+    // TWA with threshold 80 and with threshold 90; on the third day nothing reached 90 dB: a dose of 0 has no level.
+    const days: [number, number | null, number][] = [
+      [88, 86, 58],
+      [89, 87, 66],
+      [84, null, 0],
+      [90, 88, 76],
+      [91, 89, 87],
+    ];
+    for (const [index, [actionDb, limitDb, limitPct]] of days.entries())
+      await buildDay(worker, daysFromToday(-1 - index), {
+        grade: "measured-worker",
+        governingRuleSet: "us-general-industry",
+        criteria: [
+          ["action-value", actionDb, 100 * 2 ** ((actionDb - 90) / 5)],
+          ["limit", limitDb, limitPct],
+        ].map(([criterionId, levelDb, dosePct]) => ({
+          ruleSetKey: "us-general-industry",
+          criterionId,
+          levelDb,
+          dosePct,
+          bound: "exact",
+        })),
+      });
+    const { body } = await client.get(`/groups/${job.id}`);
+    expect(body.blocks).toHaveLength(2);
+    const [action, limit] = body.blocks;
+    // 29 CFR 1910.95(c) and (a): the one counts from 80 dB and acts at 85, the other from 90 dB and at 90.
+    expect(action).toMatchObject({ quantity: "dose", exchangeRateDb: 5, thresholdDb: 80 });
+    expect(action.statistics).toMatchObject({ sampleCount: 5, belowCount: 0, energyMeanDb: null });
+    expect(action.statistics.meanDb).toBeCloseTo(88.4, 9);
+    expect(action.statistics.exceedances).toMatchObject([{ levelDb: 85 }]);
+    expect(limit).toMatchObject({ quantity: "dose", exchangeRateDb: 5, thresholdDb: 90 });
+    expect(limit.statistics).toMatchObject({ sampleCount: 5, belowCount: 1, energyMeanDb: null });
+    expect(limit.statistics.exceedances).toMatchObject([{ levelDb: 90 }]);
+  });
+
+  test("samples under an instrument's range are named beside the budget that takes them as they are", async () => {
+    const site = await buildSite();
+    const client = await officerAt(site);
+    const job = await buildJob({ site });
+    const survey = await buildSurvey({
+      site,
+      jobId: job.id,
+      strategy: "full-day",
+      targets: [{ taskId: null, sampleMin: 480 }],
+    });
+    const worker = await buildWorker({ site, jobId: job.id });
+    for (const [index, levelDb] of [84, 85, 70].entries())
+      await buildRun({
+        site,
+        surveyId: survey.id,
+        workerId: worker.id,
+        levelDb,
+        durationMin: 480,
+        covers: "shift",
+        date: daysFromToday(-1 - index),
+        ...(levelDb === 70 ? { doubts: ["under-range"], keptReason: "Quiet day" } : {}),
+      });
+    const { body } = await client.get(`/groups/${job.id}`);
+    expect(body.budgets[1]).toMatchObject({ belowRangeCount: 1, keptReasons: ["Quiet day"] });
+    expect(body.budgets[0]).toMatchObject({ belowRangeCount: 0 });
   });
 });

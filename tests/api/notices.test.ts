@@ -4,6 +4,8 @@ import { lookAfter } from "../../server/jobs/look-after";
 import { recomputeStaleDays } from "../../server/jobs/recompute-stale-days";
 import { sendNotice } from "../../server/jobs/send-notice";
 import { Mailer } from "../../server/lib/mailer";
+import { formatDay } from "../../shared/format/date";
+import { localDate } from "../../shared/time/zone";
 import {
   buildCrew,
   buildJob,
@@ -25,6 +27,7 @@ afterEach(() => mailbox.behave("accept"));
 
 interface Row {
   id: string;
+  entry_id: string;
   audience: string;
   state: string;
   tries: number;
@@ -218,11 +221,55 @@ describe("the outbox", () => {
     const correction = (await notices()).filter(({ state }) => state === "waiting");
     expect(correction.map(({ audience }) => audience)).toEqual(["officer", "supervisor", "worker"]);
     await select("UPDATE notices SET not_before = now() WHERE state = 'waiting'");
+    const entry = async (id: string) => (await client.get(`/entries/${id}/notices`)).body;
+    expect((await entry(entryId)).correctedAt).toBeNull();
     for (const notice of correction) await send(notice);
+    expect(Date.parse((await entry(entryId)).correctedAt)).toBeGreaterThan(0);
+    expect((await entry(correction[0]!.entry_id)).correctedAt).toBeNull();
     const mails = await mailbox.mails({ to: told.email });
     expect(mails).toHaveLength(2);
     expect(mails[1]?.text).toMatch(/This replaces/);
     expect(mails[1]?.text).toMatch(/not over the limit after all/);
+  });
+
+  test("a correction names the mail that it corrects, and orders nothing for what is closed", async () => {
+    const {
+      organizationId,
+      client,
+      entryId,
+      notices,
+      send,
+      save,
+      row,
+      workers,
+      officer,
+      saved,
+      task,
+    } = await buildNotices();
+    await client.post(`/entries/${entryId}/notices/actions`, { action: "send-now" });
+    for (const notice of await notices()) await send(notice);
+    const closedOn = daysFromToday(-1);
+    await select(
+      "UPDATE findings SET state = 'closed', closing_reason = 'left the cell', closed_on = $2 WHERE organization_id = $1 AND worker_id = $3",
+      [organizationId, closedOn, workers[0]!.id],
+    );
+    const { shiftId, revision } = saved.body.saved[0].shift;
+    // Still over, by another figure.
+    const tasks = [{ taskId: task.id, durationMin: 300 }];
+    await save([
+      row(workers[0]!.id, { shiftId, revision, reason: "went home", lengthMin: 300, tasks }),
+    ]);
+    const toOfficer = (await notices()).find(
+      ({ audience, state }) => audience === "officer" && state === "waiting",
+    );
+    await select("UPDATE notices SET not_before = now() WHERE id = $1", [toOfficer?.id]);
+    await send(toOfficer!);
+    const [, correction] = await mailbox.mails({ to: officer.email });
+    expect(correction?.subject).toBe(
+      `Correction to our mail of ${formatDay(localDate(new Date(), "Europe/London"), "en")}`,
+    );
+    expect(correction?.text).toContain(`already dealt with on ${formatDay(closedOn, "en")}`);
+    expect(correction?.text).not.toMatch(/Give |protector before/);
   });
 
   test("a peak corrected after sending is told too, though no 8-hour level moved", async () => {

@@ -38,7 +38,7 @@ const officerAt = async ({ organizationId }: Site) =>
   signInAs(await buildUser({ organizationId, roles: ["officer"] }));
 
 async function buildDesk(overrides: Parameters<typeof buildSite>[0] = {}) {
-  const site = await buildSite(overrides);
+  const site = await buildSite({ timeZone: "UTC", ...overrides });
   const worker = await buildWorker({ site });
   const instrument = await buildInstrument({ site, calibrationDueOn: daysFromToday(90) });
   const start = {
@@ -56,7 +56,7 @@ async function buildOuting(site: Site): Promise<string> {
   const worker = await buildWorker({ site });
   const instrument = await buildInstrument({ site });
   const [head] = await select<{ id: string }>(
-    `WITH v AS (INSERT INTO run_revisions (organization_id, run_id, number, out_at, covers) VALUES ($1, gen_random_uuid(), 1, $5, 'part') RETURNING id, run_id)
+    `WITH v AS (INSERT INTO run_revisions (organization_id, run_id, number, out_at, check_before_db, covers) VALUES ($1, gen_random_uuid(), 1, $5, 114, 'part') RETURNING id, run_id)
      INSERT INTO runs (id, organization_id, site_id, instrument_id, worker_id, date, is_out, span, current_revision_id)
      SELECT run_id, $1, $2, $3, $4, $6, TRUE, tstzrange($5, NULL), id FROM v RETURNING id`,
     [site.organizationId, site.id, instrument.id, worker.id, at("06:00"), date],
@@ -333,7 +333,191 @@ describe("out and back", () => {
   });
 });
 
+describe("what a run covers", () => {
+  const reading = { readings: [{ settings: laeq, averageDb: 91.2 }] };
+
+  test("an hour is not the shift unless somebody says why", async () => {
+    const { client, worker, start, site } = await buildDesk();
+    await enterShift(client, site, worker);
+    const { body: run } = await client.post("/outings", start);
+    const hour = { ...back, ...reading, backAt: at("07:00") };
+    const refused = await send(client, `/runs/${run.id}/back`, hour, 1);
+    expect(refused.body.issues).toMatchObject([
+      {
+        path: ["keptReason"],
+        code: "shorter-than-shift",
+        params: { coveredMin: 60, shiftMin: 480 },
+      },
+    ]);
+    const part = await send(client, `/runs/${run.id}/back`, { ...hour, covers: "part" }, 1);
+    expect(part.body).toMatchObject({ covers: "part", doubts: [], keptReason: null });
+    const [day] = await select<{ outside_db: number }>(
+      "SELECT x.outside_db FROM days d JOIN day_results x ON x.id = d.current_result_id WHERE d.worker_id = $1",
+      [worker.id],
+    );
+    // As evidence alone an hour leaves the day to its task: eight hours at 80 dB.
+    expect(day!.outside_db).toBeCloseTo(80, 9);
+  });
+
+  test("outside the shift it neither covers nor stands for it; the crew's usual one, where none is entered yet", async () => {
+    const { client, worker, start, site } = await buildDesk();
+    await buildCrew({ site, members: [worker], usualStart: "14:00", usualLengthMin: 480 });
+    const { body: run } = await client.post("/outings", start);
+    const refused = await send(
+      client,
+      `/runs/${run.id}/back`,
+      { ...back, backAt: at("13:00"), covers: "projected" },
+      1,
+    );
+    expect(refused.body.issues).toMatchObject([
+      { code: "outside-shift", params: { from: "14:00", to: "22:00" } },
+    ]);
+    const kept = await send(
+      client,
+      `/runs/${run.id}/back`,
+      { ...back, backAt: at("13:00"), covers: "projected", keptReason: "swapped with the morning" },
+      1,
+    );
+    expect(kept.body).toMatchObject({
+      doubts: ["outside-shift"],
+      keptReason: "swapped with the morning",
+    });
+  });
+
+  test("so is a run on its own page", async () => {
+    const { client, worker, instrument, site } = await buildDesk();
+    await enterShift(client, site, worker);
+    const run = {
+      instrumentId: instrument.id,
+      workerId: worker.id,
+      date,
+      durationMin: 60,
+      covers: "shift",
+      ...reading,
+    };
+    const refused = await client.post("/runs", run);
+    expect(refused.body.issues).toMatchObject([
+      { path: ["keptReason"], code: "shorter-than-shift" },
+    ]);
+    expect((await client.post("/runs", { ...run, covers: "projected" })).status).toBe(201);
+  });
+
+  test("so is one in the day's grid, and the other rows are saved", async () => {
+    const { client, worker, instrument, site } = await buildDesk();
+    const other = await buildWorker({ site });
+    const task = await buildTask({ site, levelDb: 80, metric: { kind: "steady" } });
+    const crew = await buildCrew({ site, members: [worker, other] });
+    const row = (workerId: string) => ({
+      kind: "worked",
+      workerId,
+      localStart: "06:00",
+      lengthMin: 480,
+      unaccounted: { how: "unknown" },
+      tasks: [{ taskId: task.id, durationMin: 480 }],
+    });
+    const run = { instrumentId: instrument.id, durationMin: 60, covers: "shift", ...reading };
+    const save = (covers: string) =>
+      client.post(`/crews/${crew.id}/day`, {
+        date,
+        rows: [row(other.id), { ...row(worker.id), run: { ...run, covers } }],
+      });
+    const { body } = await save("shift");
+    expect(body.saved).toHaveLength(1);
+    expect(body.refused).toMatchObject([
+      {
+        index: 1,
+        issues: [
+          {
+            path: ["run", "covers"],
+            code: "shorter-than-shift",
+            params: { coveredMin: 60, shiftMin: 480 },
+          },
+        ],
+      },
+    ]);
+  });
+});
+
+describe("a day gone by", () => {
+  const sheet = { ...back, backAt: at("14:30") };
+
+  test("is caught up in one entry, whatever the instrument did since", async () => {
+    const { client, worker, start, site } = await buildDesk();
+    await enterShift(client, site, worker);
+    const later = await buildWorker({ site });
+    await client.post("/outings", { ...start, workerId: later.id, outAt: at("16:00") });
+    const { status, body } = await client.post("/outings", { ...start, back: sheet });
+    expect(status).toBe(201);
+    expect(body).toMatchObject({
+      isOut: false,
+      durationMin: 510,
+      doubts: [],
+      outAt: at("06:00"),
+      backAt: at("14:30"),
+    });
+    const [revision] = await select<{ id: string }>(
+      "SELECT current_revision_id AS id FROM runs WHERE id = $1",
+      [body.id],
+    );
+    expect(await runsOfResult(worker.id)).toEqual([revision!.id]);
+  });
+
+  test("its doubts are asked about, and an overlapping run is named", async () => {
+    const { client, start } = await buildDesk();
+    const refused = await client.post("/outings", {
+      ...start,
+      checkBeforeDb: null,
+      back: { ...sheet, doubts: ["clipped"] },
+    });
+    expect(refused.body.issues.map(({ code }: { code: string }) => code)).toEqual([
+      "field-check-missing",
+      "clipped",
+    ]);
+    const { body: first } = await client.post("/outings", { ...start, back: sheet });
+    const second = await client.post("/outings", { ...start, outAt: at("14:00"), back: sheet });
+    expect([second.status, second.body.code]).toEqual([409, "instruments-overlap"]);
+    expect(second.body).toMatchObject({
+      runId: first.id,
+      params: { from: at("06:00"), to: at("14:30") },
+    });
+  });
+
+  test("does not show an instrument as out that went out after it", async () => {
+    const { client, site, start } = await buildDesk();
+    await client.post("/outings", {
+      ...start,
+      date: daysFromToday(0),
+      outAt: at("00:01", daysFromToday(0)),
+    });
+    const past = await client.get(`/sites/${site.id}/outings?date=${date}`);
+    expect(past.body.rows[0].run).toBeNull();
+    const present = await client.get(`/sites/${site.id}/outings?date=${daysFromToday(0)}`);
+    expect(present.body.rows[0].run).toMatchObject({ isOut: true });
+  });
+});
+
 describe("what speaks against a run", () => {
+  test("a reason that nothing calls for is not kept", async () => {
+    const { client, start } = await buildDesk();
+    const { body: run } = await client.post("/outings", start);
+    const done = await send(
+      client,
+      `/runs/${run.id}/back`,
+      { ...back, keptReason: "left over from an earlier question" },
+      1,
+    );
+    expect(done.body).toMatchObject({ doubts: [], keptReason: null });
+  });
+
+  test("a missing field check is asked about", async () => {
+    const { client, start } = await buildDesk();
+    const { body: run } = await client.post("/outings", { ...start, checkBeforeDb: null });
+    const refused = await send(client, `/runs/${run.id}/back`, back, 1);
+    expect(refused.body.issues).toMatchObject([
+      { path: ["keptReason"], code: "field-check-missing" },
+    ]);
+  });
+
   test("is asked about at its return, kept with a reason, and takes the standard's name away", async () => {
     const { client, start } = await buildDesk();
     const { body: run } = await client.post("/outings", start);

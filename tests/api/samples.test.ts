@@ -3,6 +3,7 @@ import {
   buildCrew,
   buildInstrument,
   buildSite,
+  buildSurvey,
   buildTask,
   buildUser,
   buildWorker,
@@ -146,6 +147,70 @@ describe("a sample by hand", () => {
     });
   });
 
+  test("without its field checks is kept with a reason only; a correction does not forget it", async () => {
+    const { client, sample } = await buildDesk();
+    const unchecked = { ...sample, checkBeforeDb: null, checkAfterDb: null };
+    const refused = await client.post("/samples", unchecked);
+    expect(refused.body.issues).toMatchObject([
+      { path: ["keptReason"], code: "field-check-missing" },
+    ]);
+    const keptReason = "the calibrator is at the laboratory";
+    const { body: run } = await client.post("/samples", { ...unchecked, keptReason });
+    expect(run).toMatchObject({ doubts: ["field-check-missing"], keptReason });
+    const correction = {
+      durationMin: 7,
+      covers: "part",
+      readings: run.readings,
+      reason: "ran for seven minutes",
+    };
+    const corrected = await client.put(`/runs/${run.id}`, correction, 1);
+    expect(corrected.body.issues).toMatchObject([{ code: "field-check-missing" }]);
+  });
+
+  test("a reason that outlived its doubt is not kept", async () => {
+    const { client, sample } = await buildDesk();
+    const { body } = await client.post("/samples", { ...sample, keptReason: "was too short" });
+    expect(body).toMatchObject({ doubts: [], keptReason: null });
+  });
+
+  test.each([
+    // Planned shorter than the standard asks of any sample (ISO 9612:2009, 9.3, from memory): five minutes.
+    [{ sampleMin: 2, pattern: "steady" }, 60, 5],
+    // Three whole cycles of four minutes.
+    [{ sampleMin: 5, pattern: "cyclic", cycleMin: 4 }, 60, 12],
+    // The whole of a task of three minutes.
+    [{ sampleMin: 2, pattern: "steady" }, 3, 3],
+    [{ sampleMin: 20, pattern: "steady" }, 60, 20],
+  ])(
+    "of a survey planned with %o, of a task of %i min, lasts %i min",
+    async (target, nominalMin, leastMin) => {
+      const { client, sample, site, task } = await buildDesk();
+      const { organizationId } = site;
+      const jobId = await insert("jobs", { organizationId, siteId: site.id, name: "Fitters" });
+      await insert("job_tasks", {
+        organizationId,
+        jobId,
+        taskId: task.id,
+        position: 0,
+        durationMin: nominalMin,
+      });
+      const { id: surveyId } = await buildSurvey({ site, jobId });
+      await insert("survey_targets", {
+        organizationId,
+        surveyId,
+        position: 0,
+        taskId: task.id,
+        samplesCount: 3,
+        ...target,
+      });
+      const short = { ...sample, surveyId, durationMin: leastMin - 0.5 };
+      const refused = await client.post("/samples", short);
+      expect(refused.body.issues).toMatchObject([{ code: "run-too-short", params: { leastMin } }]);
+      const taken = await client.post("/samples", { ...short, durationMin: leastMin });
+      expect(taken.body.doubts).toEqual([]);
+    },
+  );
+
   test("of a survey lasts as long as the survey planned", async () => {
     const { client, sample, site, task } = await buildDesk();
     const { organizationId } = site;
@@ -201,6 +266,10 @@ describe("a sample by hand", () => {
     await client.post("/samples", sample);
     const second = await client.post("/samples", { ...sample, startedAt: `${date}T08:05:59Z` });
     expect([second.status, second.body.code]).toEqual([409, "instruments-overlap"]);
+    expect(second.body.params).toEqual({
+      from: `${date}T08:00:00.000Z`,
+      to: `${date}T08:06:00.000Z`,
+    });
     const next = await client.post("/samples", { ...sample, startedAt: `${date}T08:06:00Z` });
     expect(next.status).toBe(201);
   });

@@ -140,6 +140,31 @@ test("every task has a spectrum and LC − LA, and most levels rest on a survey 
   ).toEqual([]);
 });
 
+test("a recording at each site was analysed, and gives a task its spectrum", async () => {
+  expect(
+    await ask(0, "SELECT state, analysis->>'durationS', file_id IS NULL FROM recordings"),
+  ).toEqual(["analysed | 20 | true", "analysed | 20 | true"]);
+  // The noise was made of the task's own bands: the analysis finds them again, and only the reason is new.
+  const found = await ask(
+    0,
+    `SELECT t.name, max(abs(n.band - o.band)) < 0.3 FROM task_levels l JOIN tasks t ON t.id = l.task_id
+       JOIN task_levels b ON b.task_id = l.task_id AND b.number = l.number - 1,
+       unnest(l.octave_bands_db) WITH ORDINALITY AS n(band, place), unnest(b.octave_bands_db) WITH ORDINALITY AS o(band, place)
+     WHERE l.recording_id IS NOT NULL AND n.place = o.place GROUP BY 1 ORDER BY 1`,
+  );
+  expect(found).toEqual(["Compressor rounds | true", "Linishing | true"]);
+});
+
+test("every task that is measured at all lies under a time history", async () => {
+  expect(
+    await ask(
+      0,
+      `SELECT t.name FROM tasks t WHERE NOT EXISTS (SELECT 1 FROM time_histories h JOIN time_history_revisions v ON v.id = h.current_revision_id,
+         jsonb_array_elements(v.stretches) x WHERE x->>'taskId' = t.id::text) ORDER BY 1`,
+    ),
+  ).toEqual([]);
+});
+
 test("surveys by each strategy, one planned with a draw and instruments, one half taken", async () => {
   expect(await ask(0, "SELECT DISTINCT strategy, state FROM surveys ORDER BY 1, 2")).toEqual([
     "full-day | done",

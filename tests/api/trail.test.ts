@@ -8,14 +8,19 @@ import type { AuditEventPage } from "../../shared/schemas/audit-event";
 import {
   buildArea,
   buildCrew,
+  buildDay,
+  buildFitTest,
   buildOrganization,
+  buildShift,
   buildSite,
   buildUser,
   buildWorker,
+  daysFromToday,
   select,
   signInAs,
   testApp,
 } from "../factories";
+import { historyText, importHistory } from "../factories/history";
 
 testApp();
 
@@ -192,6 +197,34 @@ describe("who reads the trail", () => {
     expect(named(here)).toEqual([ofCrew, ["worker", own.id, own.name]].sort());
     expect(JSON.stringify(here)).not.toContain(lent.name);
     expect((await read(other.id)).rows).toEqual([]);
+  });
+
+  test("of a fit test and of a time history it is said whose and of which day", async () => {
+    const site = await buildSite({ timeZone: "UTC" });
+    const { organizationId } = site;
+    const officer = await signInAs(await buildUser({ organizationId, roles: ["officer"] }));
+    const worker = await buildWorker({ site });
+    const testedOn = daysFromToday(-2);
+    const fit = await buildFitTest({ worker, testedOn });
+    const reason = "the wrong device";
+    const path = `/fit-tests/${fit.id}/void`;
+    const struck = await officer.send({ method: "post", path, body: { reason }, revision: 1 });
+    expect(struck.status).toBe(201);
+    const day = daysFromToday(-3);
+    await buildDay(worker, day);
+    await buildShift(worker, { date: day, lengthMin: 60, tasks: [] });
+    const { historyId } = await importHistory(officer, {
+      site,
+      worker,
+      content: historyText({ levelDb: () => 80 }),
+      covers: "projected",
+    });
+    const auditor = await signInAs(await buildUser({ organizationId, roles: ["auditor"] }));
+    const { body } = await auditor.get("/audit-events");
+    const { names } = body as z.infer<typeof AuditEventPage>;
+    const named = (id: string) => names.find((one) => one.id === id);
+    expect(named(fit.id)).toMatchObject({ kind: "fit-test", name: worker.name, date: testedOn });
+    expect(named(historyId)).toMatchObject({ kind: "time-history", name: worker.name, date: day });
   });
 
   test("as administrator gets the names of linked workers, and nothing of the programme", async () => {

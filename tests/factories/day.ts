@@ -6,6 +6,10 @@ interface DayOverrides {
   outsideDb?: number;
   crewId?: string;
   decidingTaskId?: string;
+  grade?: string;
+  governingRuleSet?: string;
+  /** Results of the governing rule set's criteria. */
+  criteria?: readonly object[];
 }
 
 /** A judged day of a worker with its current result, without the shift it would rest on. */
@@ -22,13 +26,13 @@ export async function buildDay(
     workerId,
     date,
     origin: "computed",
-    governingRuleSet: "eu-2003-10-ec",
+    governingRuleSet: overrides.governingRuleSet ?? "eu-2003-10-ec",
     governingVersion: 1,
     methodVersion: 1,
     inputsHash: Buffer.from(`${workerId} ${date}`),
     shiftMin: 480,
     unaccountedMin: 0,
-    grade: "task-level",
+    grade: overrides.grade ?? "task-level",
     outsideDb,
     outsideBound: "exact",
     atEarDb,
@@ -37,7 +41,7 @@ export async function buildDay(
     word: "good",
     decidingTaskId,
     hasProtector: "yes",
-    criteria: JSON.stringify({ governing: [] }),
+    criteria: JSON.stringify({ governing: overrides.criteria ?? [] }),
     refs: "{}",
   });
   await insert("days", {

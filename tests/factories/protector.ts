@@ -1,3 +1,5 @@
+import type { z } from "zod";
+import type { RegisterData as RegisterSchema } from "../../shared/schemas/protector";
 import { daysRange } from "./days";
 import { insert, next } from "./insert";
 import { buildOrganization } from "./organization";
@@ -20,13 +22,15 @@ const noData = {
   active: null,
 };
 
+type RegisterData = z.infer<typeof RegisterSchema>;
+
 interface ProtectorOverrides {
   organizationId?: string;
   name?: string;
   kind?: string;
   isArchived?: boolean;
   effectiveFrom?: string;
-  data?: Partial<Record<keyof typeof noData, unknown>>;
+  data?: Partial<Record<keyof RegisterData, unknown>>;
 }
 
 /** A model on the register with its first data. */

@@ -17,6 +17,8 @@ interface TaskOverrides {
   metric?: object;
   peakDb?: number;
   peakWeighting?: string;
+  /** Unweighted, by `OCTAVE_BANDS_HZ`. */
+  octaveBandsDb?: (number | null)[];
   effectiveFrom?: string;
 }
 
@@ -28,7 +30,7 @@ export async function buildTask(overrides: TaskOverrides = {}): Promise<Task> {
   const id = await insert("tasks", { organizationId, siteId, name, areaId: overrides.areaId });
   const { levelDb = 88, metric = { kind: "laeq" }, effectiveFrom = "2020-01-01" } = overrides;
   if (levelDb !== null) {
-    const { peakDb, peakWeighting } = overrides;
+    const { peakDb, peakWeighting, octaveBandsDb } = overrides;
     const level = {
       metric: JSON.stringify(metric),
       levelDb,
@@ -36,6 +38,7 @@ export async function buildTask(overrides: TaskOverrides = {}): Promise<Task> {
       effectiveFrom,
       peakDb,
       peakWeighting,
+      octaveBandsDb,
     };
     await insert("task_levels", { organizationId, taskId: id, number: 1, ...level });
   }

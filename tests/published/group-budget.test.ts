@@ -78,7 +78,7 @@ describe("ISO 9612:2009 worked examples (from memory)", () => {
     expect(items.reduce((sum, { sharePct }) => sum + sharePct, 0)).toBeCloseTo(100, 9);
   });
 
-  test("Annex E: 88.4 dB over 7.5 h, u1 2.0 dB, U 3.8 dB", () => {
+  test("Annex E: LEX,8h 88.2 dB from 88.4 dB over 7.5 h, u1 2.0 dB, U 3.8 dB", () => {
     const result = budget(LINE);
     // 88.44 less 10 lg(8/7.5) = 0.28.
     expect(result.lexDb).toAgreeWithPrinted("88.2");

@@ -285,4 +285,110 @@ export const ENGINE_VECTORS: readonly EngineVector[] = [
     governing: "australia",
     comparison: ["brazil-nr-15", "uk-2005", "us-general-industry", "acgih-tlv"],
   },
+  {
+    name: "a radio under an active muff, worn in part, the battery shorter than the shift",
+    day: buildDay(
+      [
+        buildShift(480, [
+          buildTask("run-up", 300, buildLevel(100.2, { octaveBandsDb: RUMBLE }), {
+            protection: { ...activeMuff(REPORTED), audioDb: 81.4 },
+            wornPct: 96,
+          }),
+          buildTask("jets", 180, buildLevel(98.6, { octaveBandsDb: HISS }), {
+            protection: { ...activeMuff(REPORTED), audioDb: 77.5 },
+            wornPct: 100,
+          }),
+        ]),
+      ],
+      { creditsActivePart: true },
+    ),
+    governing: "eu-2003-10-ec",
+    comparison: ["uk-2005", "us-general-industry"],
+  },
+  {
+    name: "a radio under Appendix B: steady, averaged at 5 dB and by energy",
+    day: dayOf(
+      buildTask("mill", 200, buildLevel(97.3, { metric: STEADY }), {
+        protection: buildProtection({ usRatingDb: 25 }, { audioDb: 82 }),
+        wornPct: 90,
+      }),
+      buildTask("saw", 160, buildLevel(95.1, { metric: lavg5(80) }), {
+        protection: buildProtection({ usRatingDb: 25 }, { audioDb: 79.3 }),
+        wornPct: 100,
+      }),
+      buildTask("yard", 120, buildLevel(92.6), {
+        protection: buildProtection({ usRatingDb: 25 }, { audioDb: 84.8 }),
+        wornPct: 75,
+      }),
+    ),
+    governing: "us-general-industry",
+    comparison: ["niosh-rel", "uk-2005"],
+  },
+  {
+    name: "a radio where a reading says how much noise there was",
+    day: buildDay([
+      buildShift(
+        480,
+        [
+          buildTask("test-cell", 250, buildLevel(99.4, { metric: STEADY, lcMinusLaDb: 1.2 }), {
+            protection: buildProtection({ usRatingDb: 29, snrDb: 33 }, { audioDb: 80 }),
+            wornPct: 88,
+          }),
+          buildTask("office", 200, buildLevel(66, { metric: STEADY })),
+        ],
+        {
+          unaccounted: { how: "like-the-rest" },
+          readings: [
+            buildReading(settings(5, 80), { dosePct: 143.7, durationMin: 480 }),
+            buildReading(LAEQ_SETTINGS, { id: "energy", averageDb: 98.1, durationMin: 480 }),
+          ],
+        },
+      ),
+    ]),
+    governing: "us-general-industry",
+    comparison: ["uk-2005"],
+  },
+  {
+    name: "impulses of all three types under protectors",
+    day: dayOf(
+      ...([1, 2, 3] as const).map((impulseType) =>
+        buildTask(
+          `type-${impulseType}`,
+          160,
+          buildLevel(93 + impulseType, {
+            impulseType,
+            lcMinusLaDb: 1.4,
+            peak: { levelDb: 145.5 + impulseType, weighting: "C" },
+          }),
+          {
+            protection: buildProtection({ hDb: 31, mDb: 25, lDb: 17, snrDb: 28 }),
+            wornPct: 100,
+          },
+        ),
+      ),
+    ),
+    governing: "uk-2005",
+    comparison: ["eu-2003-10-ec", "brazil-nr-15"],
+  },
+  {
+    name: "two together past what bone conduction lets be taken off",
+    day: dayOf(
+      buildTask("fan-room", 480, buildLevel(112.8, { octaveBandsDb: RUMBLE }), {
+        zone: "double",
+        wornPct: 100,
+        protection: buildProtection(
+          { kind: "foam-plug" },
+          {
+            outer: buildProtector({ modelId: "outer" }),
+            combinationBands: {
+              meanDb: [36, 40, 44, 52, 55, 48, 54, 56],
+              sdDb: [4, 4, 3, 3, 3, 3, 3, 4],
+            },
+          },
+        ),
+      }),
+    ),
+    governing: "eu-2003-10-ec",
+    comparison: ["uk-2005"],
+  },
 ];

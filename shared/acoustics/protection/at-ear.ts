@@ -31,6 +31,7 @@ import type {
 import { poweredShare } from "./active";
 import { en458Word } from "./adequacy";
 import { activeGainDb, methodResult, reductions } from "./attenuation";
+import { type AudioLaw, audioLaw, withAudioDb, withAudioWeight } from "./programme-audio";
 import { wornShareLevelDb } from "./wearing-time";
 
 /** A worker's day from under the protectors, minutes times weight under the rule's law without its threshold. */
@@ -53,6 +54,12 @@ export interface DayAtEar {
   readonly creditedTaskIds: ReadonlySet<string>;
 }
 
+/** What a minute weighs, between what is certain and what is possible. */
+interface Range {
+  readonly least: number;
+  readonly most: number;
+}
+
 /** Weight factors of one task: bare is 1. Least and most differ where something about the protector is not known. */
 interface Seen {
   readonly atEar: TaskAtEar;
@@ -60,6 +67,8 @@ interface Seen {
   /** Worn, active part off and on; null: not known. */
   readonly off: number | null;
   readonly on: number | null;
+  /** Programme audio under the protector, dB; null: none. */
+  readonly audioDb: number | null;
   readonly isCredited: boolean;
 }
 
@@ -116,7 +125,7 @@ export function evaluateAtEar(
     if (powered === null) isBatteryUnknown = true;
 
     const scale = scaleOf(shift, day, law, outsideLaw);
-    for (const { task, off: offFactor, on: onFactor, atEar, isCredited } of seen) {
+    for (const { task, off: offFactor, on: onFactor, audioDb, atEar, isCredited } of seen) {
       const { level } = task;
       if (level === null || task.durationMin === 0) continue;
       const minutes = task.durationMin * scale.factor;
@@ -131,6 +140,23 @@ export function evaluateAtEar(
         onFactor === null || offFactor === null || powered === null
           ? null
           : powered * onFactor + (1 - powered) * offFactor;
+      if (audioDb !== null) {
+        // The reading's factor is on the noise, not on the programme.
+        const bare = { least: least * scale.ofReading, most: most * scale.ofReading };
+        const under = wornUnderAudio(bare, audioLaw(audioDb, level, law, scale.isByReading));
+        const offWeight = under(offFactor);
+        const onWeight = under(onFactor ?? offFactor);
+        const mixedWeight = powered === null ? offWeight : mixOf(powered, onWeight, offWeight);
+        const minutesHere = task.durationMin * scale.likeness;
+        const add = (adder: Adder, share: number | null, whileWorn: Range) =>
+          adder.addWithAudio(minutesHere, bare, share, whileWorn, weightOf(audioDb, law));
+        add(off, worn, offWeight);
+        add(on, worn, onWeight);
+        add(asWorked, worn, mixedWeight);
+        add(judged, worn, isCredited ? mixedWeight : offWeight);
+        add(fullyWorn, 1, offWeight);
+        continue;
+      }
       off.add(minutes, least, most, worn, offFactor);
       on.add(minutes, least, most, worn, onFactor ?? offFactor);
       asWorked.add(minutes, least, most, worn, mixed ?? offFactor);
@@ -153,6 +179,19 @@ export function evaluateAtEar(
     creditedTaskIds,
   };
 }
+
+/** What a minute weighs while worn, by what the protector leaves of the noise (null: not known) and the programme. */
+function wornUnderAudio(bare: Range, audio: AudioLaw): (factor: number | null) => Range {
+  return (factor) => ({
+    least: withAudioWeight(factor === null ? 0 : bare.least * factor, audio, "least"),
+    most: withAudioWeight(bare.most * (factor ?? 1), audio, "most"),
+  });
+}
+
+const mixOf = (share: number, a: Range, b: Range): Range => ({
+  least: share * a.least + (1 - share) * b.least,
+  most: share * a.most + (1 - share) * b.most,
+});
 
 function bareDay(day: DayInput, outside: Sum): DayAtEar {
   const tasks: TaskAtEar[] = [];
@@ -184,6 +223,10 @@ interface Scale {
   readonly readingSum: number;
   /** On the tasks' minutes. */
   readonly factor: number;
+  /** The part of it by which the tasks stand for more time than their own. */
+  readonly likeness: number;
+  /** The part of it that the reading makes of the tasks' noise; 1 without one. */
+  readonly ofReading: number;
   readonly missing: Reason | null;
 }
 
@@ -200,7 +243,8 @@ export function scaleOf(
       : null);
   const likeness = likenessFactor(shift);
   const reading = shift.readings.length > 0 ? governingReading(shift, outsideLaw) : undefined;
-  if (!reading) return { isByReading: false, readingSum: 0, factor: likeness, missing };
+  if (!reading)
+    return { isByReading: false, readingSum: 0, factor: likeness, likeness, ofReading: 1, missing };
   const readingSum = sumReading(reading, shift, { ...law, table: null });
   const bareLaw: ExchangeLaw = { ...outsideLaw, table: null };
   let tasksSum = quietSum(shift, bareLaw);
@@ -213,6 +257,8 @@ export function scaleOf(
     isByReading: true,
     readingSum,
     factor: tasksSum > 0 ? (likeness * readingSum) / tasksSum : 0,
+    likeness,
+    ofReading: tasksSum > 0 ? readingSum / tasksSum : 0,
     missing: missing ?? (accountedMin(shift) > 0 ? null : "no-tasks"),
   };
 }
@@ -234,6 +280,8 @@ class Adder {
   private most = 0;
   private shiftLeast = 0;
   private shiftMost = 0;
+  /** The most that the programme alone adds to the shift. */
+  private shiftAudio = 0;
   private missing: Reason | null = null;
 
   add(
@@ -250,6 +298,27 @@ class Adder {
     this.shiftMost += minutes * mostWeightPerMin * Math.max(least, most);
   }
 
+  /** A task with programme audio: what it weighs while worn is no factor of the noise without it. */
+  addWithAudio(
+    minutes: number,
+    bare: Range,
+    worn: number | null,
+    whileWorn: Range,
+    audioWeight: number,
+  ): void {
+    this.shiftLeast +=
+      minutes *
+      (worn === null
+        ? Math.min(bare.least, whileWorn.least)
+        : (1 - worn) * bare.least + worn * whileWorn.least);
+    this.shiftMost +=
+      minutes *
+      (worn === null
+        ? Math.max(bare.most, whileWorn.most)
+        : (1 - worn) * bare.most + worn * whileWorn.most);
+    this.shiftAudio += minutes * audioWeight;
+  }
+
   closeShift(shift: ShiftInput, scale: Scale, law: ExchangeLaw): void {
     const { isByReading, readingSum, missing } = scale;
     const factor = isByReading ? scale.factor : 1;
@@ -258,7 +327,7 @@ class Adder {
       this.least += this.shiftLeast + quiet;
       this.most += this.shiftMost + quiet;
     } else if (isByReading) {
-      this.most += readingSum;
+      this.most += readingSum + this.shiftAudio;
     } else {
       this.least += this.shiftLeast + quiet;
       this.most = Number.POSITIVE_INFINITY;
@@ -266,6 +335,7 @@ class Adder {
     this.missing ??= missing;
     this.shiftLeast = 0;
     this.shiftMost = 0;
+    this.shiftAudio = 0;
   }
 
   sum(): Sum {
@@ -321,11 +391,13 @@ function seeTask(
   const outsideDb = level.levelDb;
   const methods = reductions(level, protection, rule).map((one) => methodResult(outsideDb, one));
   const governing = governingMethod(methods, rule);
+  const audioDb = protection.audioDb ?? null;
   if (governing.atEarDb === null) {
     return {
       task,
       off: null,
       on: null,
+      audioDb,
       isCredited: false,
       atEar: {
         ...bareTask(task, true, outsideDb, governing.reason),
@@ -334,9 +406,11 @@ function seeTask(
       },
     };
   }
-  const wornDb = governing.atEarDb;
+  const noiseDb = governing.atEarDb;
   const active = activeGainDb(level, protection, rule.alpha);
-  const wornActiveDb = active.gainDb === null ? null : wornDb - active.gainDb;
+  const noiseActiveDb = active.gainDb === null ? null : noiseDb - active.gainDb;
+  const wornDb = withAudioDb(noiseDb, audioDb);
+  const wornActiveDb = noiseActiveDb === null ? null : withAudioDb(noiseActiveDb, audioDb);
   const isCredited =
     wornActiveDb !== null && day.site.creditsActivePart && protection.activeCheckPassed;
   const inTask = (whileWornDb: number): number | null =>
@@ -351,18 +425,20 @@ function seeTask(
   const leastDb = aboveDb(leastAtEar(level, law, outsideLaw));
   const mostDb = aboveDb(mostAtEar(level, law, outsideLaw));
   const isBounded = mostDb - leastDb > BINARY_NOISE_DB;
-  const word = (whileWornDb: number): ProtectorWord | null => {
-    if (!isBounded) return wordOf(whileWornDb, actionDb);
-    const atLeast = wordOf(whileWornDb + leastDb, actionDb);
-    return atLeast === wordOf(whileWornDb + mostDb, actionDb) ? atLeast : null;
+  const word = (leftDb: number): ProtectorWord | null => {
+    if (!isBounded) return wordOf(withAudioDb(leftDb, audioDb), actionDb);
+    const atLeast = wordOf(withAudioDb(leftDb + leastDb, audioDb), actionDb);
+    const atMost = wordOf(withAudioDb(leftDb + mostDb, audioDb), actionDb);
+    return atLeast === atMost ? atLeast : null;
   };
-  const wornWord = word(wornDb);
+  const wornWord = word(noiseDb);
   const isOpen = isBounded && actionDb !== null && wornWord === null;
   const bound = mostDb === Number.POSITIVE_INFINITY ? "only-lower-bound" : "only-upper-bound";
   return {
     task,
-    off: weightOf(wornDb - outsideDb, law),
-    on: wornActiveDb === null ? null : weightOf(wornActiveDb - outsideDb, law),
+    off: weightOf(noiseDb - outsideDb, law),
+    on: noiseActiveDb === null ? null : weightOf(noiseActiveDb - outsideDb, law),
+    audioDb,
     isCredited,
     atEar: {
       timedTaskId: task.id,
@@ -376,8 +452,9 @@ function seeTask(
       inTaskDb: inTask(wornDb),
       inTaskActiveDb: wornActiveDb === null ? null : inTask(wornActiveDb),
       word: wornWord,
-      wordActive: wornActiveDb === null ? null : word(wornActiveDb),
+      wordActive: noiseActiveDb === null ? null : word(noiseActiveDb),
       reason: task.wornPct === null ? "wearing-unknown" : isOpen ? bound : active.reason,
+      ...(audioDb !== null && { audio: { levelDb: audioDb, noiseDb, noiseActiveDb } }),
     },
   };
 }
@@ -392,7 +469,7 @@ function bare(
   reason: Reason | null,
 ): Seen {
   const atEar = bareTask(task, isWorn, outsideDb, reason);
-  return { task, off: 1, on: null, isCredited: false, atEar };
+  return { task, off: 1, on: null, audioDb: null, isCredited: false, atEar };
 }
 
 function bareTask(
@@ -437,7 +514,7 @@ interface Governing {
 }
 
 /** The method that counts under a rule, and the level by it; own fit replaces the label, or can only lower it. */
-function governingMethod(
+export function governingMethod(
   methods: readonly MethodResult[],
   rule: RuleSetVersion["protection"],
 ): Governing {

@@ -1,7 +1,7 @@
 import type {
   AttenuationMethod,
-  BandAttenuation,
   MethodResult,
+  OctaveBandValues,
   Protection,
   ProtectorData,
   Reason,
@@ -9,6 +9,7 @@ import type {
   TaskLevel,
 } from "../types";
 import { activeAttenuationDb } from "./active";
+import { combinationAttenuationDb } from "./bone-conduction";
 import { doubleAttenuationDb } from "./double";
 import {
   assumedAttenuationDb,
@@ -79,7 +80,7 @@ export function reductions(
 function reductionsOfOne(level: TaskLevel, data: ProtectorData, rule: ProtectionRule): Reduction[] {
   const found: Reduction[] = [];
   const lcLaDb = lcMinusLaDb(level);
-  if (data.bands !== null) found.push(byBands(level, data.bands, rule.alpha));
+  if (data.bands !== null) found.push(byBands(level, assumedAttenuationDb(data.bands, rule.alpha)));
   if (data.hDb !== null && data.mDb !== null && data.lDb !== null) {
     found.push(byHml(data.hDb, data.mDb, data.lDb, lcLaDb));
   }
@@ -108,9 +109,9 @@ function reductionsOfTwo(
   const found: Reduction[] = [];
   const lcLaDb = lcMinusLaDb(level);
   if (combinationBands !== null) {
-    const assumedDb = assumedAttenuationDb(combinationBands, rule.alpha);
+    const assumedDb = combinationAttenuationDb(combinationBands, rule.alpha);
     const { hDb, mDb, lDb } = hmlOfBandsDb(assumedDb);
-    found.push(byBands(level, combinationBands, rule.alpha));
+    found.push(byBands(level, assumedDb));
     found.push(byHml(hDb, mDb, lDb, lcLaDb));
     found.push(byRating("snr", snrOfBandsDb(assumedDb), lcLaDb));
   } else {
@@ -159,11 +160,11 @@ function usReductionDb(
   return deratedAttenuationDb(ratingDb, derateType(data.kind), DERATINGS[rule.derating]);
 }
 
-function byBands(level: TaskLevel, bands: BandAttenuation, alpha: number): Reduction {
+function byBands(level: TaskLevel, assumedDb: OctaveBandValues): Reduction {
   if (level.octaveBandsDb === null) return missing("octave-band", "no-spectrum");
   return {
     method: "octave-band",
-    reductionDb: bandReductionDb(level.octaveBandsDb, assumedAttenuationDb(bands, alpha)),
+    reductionDb: bandReductionDb(level.octaveBandsDb, assumedDb),
     reason: null,
   };
 }

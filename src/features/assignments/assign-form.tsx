@@ -2,16 +2,20 @@ import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { useRef } from "react";
 import { z } from "zod";
+import { AudioDb } from "../../../shared/schemas/worker";
 import { Button } from "../../components/button";
 import {
   DateField,
   Form,
   FormActions,
+  NumberField,
   SelectField,
   SubmitButton,
   showIssuesOn,
+  TextField,
   useSchemaForm,
 } from "../../components/form";
+import { FormProblem } from "../../components/form-problem";
 import { ApiError, newChangeKey } from "../../lib/api";
 import { problemText } from "../../lib/problem-text";
 import { references } from "../../lib/references";
@@ -25,6 +29,14 @@ const AssignFields = z
     outerModelId: z.uuid().nullable(),
     fromDate: z.iso.date(),
     toDate: z.iso.date().nullable(),
+    /** A field that was emptied states none. */
+    size: z
+      .string()
+      .trim()
+      .max(20)
+      .nullable()
+      .transform((size) => size || null),
+    audioDb: AudioDb.nullable(),
   })
   .check((context) => {
     const { innerModelId, outerModelId, fromDate, toDate } = context.value;
@@ -90,8 +102,12 @@ export function AssignForm({
       outerModelId: start.outerModelId ?? null,
       fromDate: today,
       toDate: null,
+      size: null,
+      audioDb: null,
     },
   });
+  const sizes =
+    protectors.data?.rows.find(({ id }) => id === form.watch("innerModelId"))?.data.sizes ?? [];
   const models = (protectors.data?.rows ?? [])
     .filter(({ isArchived }) => !isArchived)
     .map(({ id, name }) => ({ value: id, label: name }));
@@ -160,6 +176,27 @@ export function AssignForm({
         emptyLabel={i18n.t("none")}
         isOptional
       />
+      {sizes.length > 0 ? (
+        <SelectField
+          form={form}
+          name="size"
+          label={i18n.t("Size")}
+          choices={sizes.map((size) => ({ value: size, label: size }))}
+          emptyLabel={i18n.t("not said")}
+          note={i18n.t("A fit of another size says nothing of this one.")}
+          isOptional
+        />
+      ) : (
+        <TextField form={form} name="size" label={i18n.t("Size")} isOptional />
+      )}
+      <NumberField
+        form={form}
+        name="audioDb"
+        label={i18n.t("Radio or signal under it")}
+        unit="dB(A)"
+        note={i18n.t("Its level at the ear while worn; it adds to the noise that is left.")}
+        isOptional
+      />
       <DateField
         form={form}
         name="fromDate"
@@ -167,11 +204,7 @@ export function AssignForm({
         note={i18n.t("An open assignment of the same use ends the day before.")}
       />
       <DateField form={form} name="toDate" label={i18n.t("Until, and with")} isOptional />
-      {assign.error && (
-        <p className="field-error" role="alert">
-          {problemText(i18n, assign.error)}
-        </p>
-      )}
+      <FormProblem error={assign.error} />
       <FormActions>
         <SubmitButton isBusy={assign.isPending}>{i18n.t("Assign")}</SubmitButton>
         <Button onClick={onCancel}>{i18n.t("Leave it")}</Button>

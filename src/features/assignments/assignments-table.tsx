@@ -3,6 +3,7 @@ import { useState } from "react";
 import type { z } from "zod";
 import { protectorNames } from "../../../shared/findings/facts";
 import { formatShortDate } from "../../../shared/format/date";
+import { formatLevel } from "../../../shared/format/level";
 import { AssignmentEnd, type AssignmentView } from "../../../shared/schemas/worker";
 import { Button } from "../../components/button";
 import { type DataColumn, DataTable } from "../../components/data-table";
@@ -15,9 +16,9 @@ import {
   showIssuesOn,
   useSchemaForm,
 } from "../../components/form";
+import { FormProblem } from "../../components/form-problem";
 import { TextButton, TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
-import { problemText } from "../../lib/problem-text";
 import { paths } from "../../paths";
 import { useEndAssignment } from "./queries";
 
@@ -59,10 +60,23 @@ export function AssignmentsTable({
     {
       id: "protector",
       head: i18n.t("Protector"),
-      cell: ({ innerModelId, innerName, outerName }) => (
-        <TextLink className="is-quiet" to={paths.protector(innerModelId)}>
-          {protectorNames(i18n, outerName === null ? [innerName] : [innerName, outerName])}
-        </TextLink>
+      cell: ({ innerModelId, innerName, outerName, size, audioDb }) => (
+        <span className="two-lines">
+          <TextLink className="is-quiet" to={paths.protector(innerModelId)}>
+            {protectorNames(i18n, outerName === null ? [innerName] : [innerName, outerName])}
+          </TextLink>
+          {(size !== null || audioDb !== null) && (
+            <span className="beneath">
+              {[
+                size !== null && i18n.t("size {size}", { size }),
+                audioDb !== null &&
+                  i18n.t("radio {level} dB(A)", { level: formatLevel(audioDb, locale) }),
+              ]
+                .filter(Boolean)
+                .join(", ")}
+            </span>
+          )}
+        </span>
       ),
     },
     { id: "from", head: i18n.t("From"), cell: ({ fromDate }) => formatShortDate(fromDate, locale) },
@@ -132,6 +146,7 @@ function EndForm({
   const { i18n } = useLingui();
   const end = useEndAssignment(assignment);
   const form = useSchemaForm(AssignmentEnd, {
+    keepAs: assignment.id,
     defaultValues: { toDate: today < assignment.fromDate ? assignment.fromDate : today },
   });
   return (
@@ -148,11 +163,7 @@ function EndForm({
         label={i18n.t("Last day with {protector}", { protector: assignment.innerName })}
         note={i18n.t("Days after it are judged again without the protector.")}
       />
-      {end.error && (
-        <p className="field-error" role="alert">
-          {problemText(i18n, end.error)}
-        </p>
-      )}
+      <FormProblem error={end.error} />
       <FormActions>
         <SubmitButton isBusy={end.isPending}>{i18n.t("End it")}</SubmitButton>
         <Button onClick={onDone}>{i18n.t("Leave it")}</Button>

@@ -7,10 +7,16 @@ import type { CrewSheetRow } from "../../../shared/schemas/crew";
 import { Button } from "../../components/button";
 import { Empty } from "../../components/empty";
 import { Failed } from "../../components/failed";
+import { FormProblem } from "../../components/form-problem";
 import { useLocale } from "../../lib/i18n";
+import { useTypedText } from "../../lib/keep-typed";
+import { tooManyText } from "../../lib/too-many";
 import { useSendStep } from "./order-actions";
 import { crewSheetQueries, type SheetOrder } from "./queries";
 import { StaleOrder } from "./stale-order";
+
+/** The server takes no more. */
+const LONGEST_QUESTION = 10_000;
 
 type AskedRow = CrewSheetRow & { order: SheetOrder };
 
@@ -33,7 +39,7 @@ export function AskOfficer({
   const titleId = useId();
   const known = new Map(rows.filter(hasOrder).map((row) => [row.worker.id, row]));
   const choices = [...known.values()];
-  const [chosenId, setChosenId] = useState<string | null>(null);
+  const [chosenId, setChosenId] = useTypedText(`about ${crewId}`);
   const chosen = choices.find(({ worker }) => worker.id === chosenId) ?? choices[0] ?? null;
   return (
     <section className="sheet-part" data-part="ask" aria-labelledby={titleId}>
@@ -103,7 +109,7 @@ function Question({
   // Whoever reads the thread has seen its revision; the sheet may be older.
   const seen = { ...order, revision: finding.data?.revision ?? order.revision };
   const { send, forget, asked, current, isBusy, error } = useSendStep(crewId, seen);
-  const [text, setText] = useState("");
+  const [text, setText] = useTypedText(`question ${order.findingId}`);
   const [isEmpty, setIsEmpty] = useState(false);
   const [said, setSaid] = useState("");
   const sent = () => {
@@ -115,13 +121,16 @@ function Question({
     event.preventDefault();
     const question = text.trim();
     setIsEmpty(question === "");
-    if (question === "") {
+    if (question === "" || question.length > LONGEST_QUESTION) {
       document.getElementById(id)?.focus();
       return;
     }
     send({ kind: "comment", text: question }, sent);
   }
 
+  const fault = isEmpty
+    ? i18n.t("Write what you want to know.")
+    : tooManyText(i18n, text, LONGEST_QUESTION);
   return (
     <>
       {finding.isError && <Failed error={finding.error} onRetry={() => void finding.refetch()} />}
@@ -148,26 +157,21 @@ function Question({
           id={id}
           className="input"
           rows={4}
-          maxLength={10_000}
           aria-required="true"
-          aria-invalid={isEmpty || undefined}
-          aria-describedby={isEmpty ? `${id}-error` : undefined}
+          aria-invalid={fault ? true : undefined}
+          aria-describedby={fault && `${id}-error`}
           value={text}
           onChange={(event) => {
             setText(event.target.value);
             setIsEmpty(false);
           }}
         />
-        {isEmpty && (
+        {fault && (
           <p className="field-error" id={`${id}-error`}>
-            {i18n.t("Write what you want to know.")}
+            {fault}
           </p>
         )}
-        {error && (
-          <p className="field-error" role="alert">
-            {error}
-          </p>
-        )}
+        <FormProblem error={error} />
         <div className="sheet-form-actions">
           <Button type="submit" kind="big" size="supervisor" isBusy={isBusy}>
             {i18n.t("Send to the officer")}

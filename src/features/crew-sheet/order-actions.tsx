@@ -2,20 +2,22 @@ import { useLingui } from "@lingui/react";
 import { type FormEvent, type ReactNode, useId, useState } from "react";
 import { findingStateWord } from "../../../shared/findings/words";
 import { Button } from "../../components/button";
+import { FormProblem } from "../../components/form-problem";
 import { TextButton } from "../../components/link";
 import { useChangeKey } from "../../lib/change-key";
+import { useTypedText } from "../../lib/keep-typed";
 import { useMoveFocus } from "../../lib/move-focus";
-import { problemText } from "../../lib/problem-text";
 import { savedMeanwhile } from "../../lib/stale";
+import { tooManyText } from "../../lib/too-many";
 import { findingReply, type OrderStep, type SheetOrder, useOrderStep } from "./queries";
 import { StaleOrder } from "./stale-order";
 
-/** A reason of two letters says nothing; the server asks for three as well. */
+/** A reason of two letters says nothing; the server asks for three as well, and takes no more. */
 const SHORTEST_REASON = 3;
+const LONGEST_REASON = 2000;
 
 /** Sends steps on an order, asks where somebody was quicker, and says what went wrong in its place. */
 export function useSendStep(crewId: string, order: Pick<SheetOrder, "findingId" | "revision">) {
-  const { i18n } = useLingui();
   const { keyFor, forget: forgetKey } = useChangeKey();
   const change = useOrderStep(crewId, order.findingId);
   const [asked, setAsked] = useState<OrderStep | null>(null);
@@ -44,7 +46,7 @@ export function useSendStep(crewId: string, order: Pick<SheetOrder, "findingId" 
     asked,
     current,
     isBusy: change.isPending,
-    error: change.isError && !current ? problemText(i18n, change.error) : null,
+    error: current ? null : change.error,
   };
 }
 
@@ -69,8 +71,8 @@ export function OrderActions({
 }) {
   const { i18n } = useLingui();
   const { send, forget, asked, current, isBusy, error } = useSendStep(crewId, order);
-  const [isRefusing, setIsRefusing] = useState(false);
-  const [text, setText] = useState("");
+  const [text, setText] = useTypedText(`cannot ${order.findingId}`);
+  const [isRefusing, setIsRefusing] = useState(text !== "");
   const [isTooShort, setIsTooShort] = useState(false);
   const [said, setSaid] = useState("");
   const id = useId();
@@ -82,7 +84,7 @@ export function OrderActions({
     event.preventDefault();
     const reason = text.trim();
     setIsTooShort(reason.length < SHORTEST_REASON);
-    if (reason.length < SHORTEST_REASON) {
+    if (reason.length < SHORTEST_REASON || reason.length > LONGEST_REASON) {
       document.getElementById(`${id}-reason`)?.focus();
       return;
     }
@@ -102,6 +104,9 @@ export function OrderActions({
     toCannot();
   }
 
+  const fault = isTooShort
+    ? i18n.t("Say it in a few words.")
+    : tooManyText(i18n, text, LONGEST_REASON);
   return (
     <div ref={place} className="contents">
       <div className="sheet-order">
@@ -133,7 +138,10 @@ export function OrderActions({
           className="sheet-cannot"
           data-cannot
           aria-label={i18n.t("Can’t, because… {name}", { name: workerName })}
-          onClick={() => setIsRefusing(true)}
+          onClick={() => {
+            setIsRefusing(true);
+            moveFocus("textarea");
+          }}
         >
           {i18n.t("Can’t, because…")}
         </TextButton>
@@ -152,21 +160,18 @@ export function OrderActions({
             id={`${id}-reason`}
             className="input"
             rows={3}
-            maxLength={2000}
-            // biome-ignore lint/a11y/noAutofocus: it was just asked for
-            autoFocus
             aria-required="true"
-            aria-invalid={isTooShort || undefined}
-            aria-describedby={isTooShort ? `${id}-error` : undefined}
+            aria-invalid={fault ? true : undefined}
+            aria-describedby={fault && `${id}-error`}
             value={text}
             onChange={(event) => {
               setText(event.target.value);
               setIsTooShort(false);
             }}
           />
-          {isTooShort && (
+          {fault && (
             <p className="field-error" id={`${id}-error`}>
-              {i18n.t("Say it in a few words.")}
+              {fault}
             </p>
           )}
           <div className="sheet-form-actions">
@@ -179,11 +184,7 @@ export function OrderActions({
           </div>
         </form>
       )}
-      {error && (
-        <p className="field-error" role="alert">
-          {error}
-        </p>
-      )}
+      <FormProblem error={error} />
       <p className="status sheet-said" role="status">
         {said}
       </p>

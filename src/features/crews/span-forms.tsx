@@ -200,11 +200,15 @@ export function EndSpanForm({
 }) {
   const { i18n } = useLingui();
   const take = useTakeCrew(onDone);
-  const form = useSchemaForm(DatedEnd, { defaultValues: { toDate: lastDay } });
+  const form = useSchemaForm(DatedEnd, { defaultValues: { toDate: lastDay }, keepAs: spanId });
+  const toBody = (saved: CrewDetail) => ({
+    toDate: saved[kind].find(({ id }) => id === spanId)?.toDate ?? "",
+  });
   const end = useRevisedSave<z.output<typeof DatedEnd>, CrewDetail>({
     path: () => `/crews/${crew.id}/${kind}/${spanId}`,
     method: "patch",
     schema: CrewDetail,
+    toBody,
     onSaved: take,
     onError: showIssuesOn(form, i18n),
   });
@@ -226,9 +230,7 @@ export function EndSpanForm({
         <ConflictDialog
           title={i18n.t("Someone saved this crew before you")}
           conflict={end.conflict}
-          toBody={(saved) => ({
-            toDate: saved[kind].find(({ id }) => id === spanId)?.toDate ?? "",
-          })}
+          toBody={toBody}
           fields={[
             {
               key: "toDate",

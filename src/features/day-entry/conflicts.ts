@@ -1,7 +1,7 @@
 import type { DayGridView, GridRow, SavedShift } from "../../../shared/schemas/shift";
 import type { Cell } from "./cells";
 import { type CellId, taskCell, wornCell } from "./columns";
-import { openRow, type RowDraft } from "./draft";
+import { type DayDraft, isBehind, openRow, type RowDraft } from "./draft";
 
 /** A field on which two savings of one shift differ. */
 export interface Difference {
@@ -68,5 +68,28 @@ export function mergeRow(
     answered: yours.answered,
     isTouched: taken.size > 0 || yours.isRunTouched,
     isConfirmed: false,
+  };
+}
+
+/** Whether a row was typed, or confirmed, to the same as somebody else has saved since. */
+function saysAsSaved(row: RowDraft, gridRow: GridRow, view: DayGridView): boolean {
+  if (row.isRunTouched) return false;
+  if (row.isAbsent) return gridRow.isAbsent;
+  const { saved } = gridRow;
+  if (saved === null || gridRow.isAbsent || !isBehind(row, gridRow)) return false;
+  const theirs = savedRow(gridRow, saved, view);
+  const taskIds = view.tasks.map(({ id }) => id);
+  return row.whichHour === theirs.whichHour && differences(row, theirs, taskIds).length === 0;
+}
+
+/** Rows that say what somebody else has saved since are stored: there is nothing to choose between the two. */
+export function settleSame(draft: DayDraft, view: DayGridView): DayDraft {
+  const gridRows = new Map(view.rows.map((row) => [row.worker.id, row]));
+  return {
+    ...draft,
+    rows: draft.rows.map((row) => {
+      const gridRow = gridRows.get(row.workerId);
+      return gridRow && saysAsSaved(row, gridRow, view) ? openRow(gridRow, view) : row;
+    }),
   };
 }

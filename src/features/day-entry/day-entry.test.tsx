@@ -8,7 +8,7 @@ import { type DayGridView, type DayRowInput, DaySaveView } from "../../../shared
 import { TestLanguage } from "../../lib/test-i18n";
 import { DayEntry } from "./day-entry";
 import { createDraftStore } from "./draft-store";
-import { gridRow, savedShift, TASK, testDay, workerId } from "./test-day";
+import { gridRow, INSTRUMENT, savedShift, shiftId, TASK, testDay, workerId } from "./test-day";
 
 const store = createDraftStore(window.localStorage, "user", "crew", "2026-11-30");
 
@@ -47,7 +47,14 @@ function answerSaving(answer: (rows: DayRowInput[]) => object) {
     const { rows } = JSON.parse(String(init?.body)) as { rows: DayRowInput[] };
     sent.push({ rows, key: new Headers(init?.headers).get("idempotency-key") });
     const entryId = "00000000-0000-4000-8000-000000009999";
-    const notices = { entryId, notBefore: null, state: "none", people: 0, notices: [] };
+    const notices = {
+      entryId,
+      notBefore: null,
+      state: "none",
+      people: 0,
+      notices: [],
+      correctedAt: null,
+    };
     const reply = DaySaveView.parse({
       entryId,
       saved: [],
@@ -75,6 +82,7 @@ vi.setConfig({ testTimeout: 30_000 });
 
 beforeEach(() => {
   window.localStorage.clear();
+  vi.useFakeTimers({ toFake: ["Date"], now: new Date("2026-12-01T12:00:00Z") });
   // jsdom has no modal dialogs.
   HTMLDialogElement.prototype.showModal = function showModal() {
     this.open = true;
@@ -116,6 +124,21 @@ describe("with the keyboard alone", () => {
     expect(runUp(2)).toHaveTextContent(/^75$/);
     await user.keyboard("{Control>}z{/Control}");
     expect(runUp(2)).toHaveTextContent("120 filled in");
+  });
+
+  test("an abandoned edit leaves nothing to take back: Ctrl+Z goes to the change before it", async () => {
+    const { user } = open(testDay(2));
+    act(() => runUp(1).focus());
+    await user.keyboard("75{Enter}80{Escape}{Control>}z{/Control}");
+    expect(runUp(2)).toHaveTextContent("120 filled in");
+    expect(runUp(1)).toHaveTextContent("120 filled in");
+    await user.keyboard("{ArrowUp}75{Enter}{ArrowUp}8099{Escape}");
+    expect(runUp(1)).toHaveTextContent(/^75$/);
+    await user.keyboard("{Control>}z{/Control}");
+    expect(runUp(1)).toHaveTextContent("120 filled in");
+    await user.keyboard("abc{Escape}{Control>}z{/Control}");
+    expect(runUp(1)).toHaveTextContent("120 filled in");
+    expect(row(1)).not.toHaveTextContent("no exposure recorded");
   });
 
   test("a marks absent and takes it back", async () => {
@@ -229,6 +252,37 @@ describe("saving", () => {
     ]);
   });
 
+  test("asks once about shifts that are not over yet, and sends them once that is confirmed", async () => {
+    vi.setSystemTime("2026-11-30T09:00:00Z");
+    const sent = answerSaving(saveAll);
+    const { user } = open(testDay(3));
+    act(() => runUp(1).focus());
+    await user.keyboard("100{Enter}110{Control>}{Enter}{/Control}");
+    const dialog = await screen.findByRole("dialog", { name: "2 shifts are not over yet" });
+    expect(dialog).toHaveTextContent("Worker 1, Worker 2.");
+    await user.click(within(dialog).getByRole("button", { name: "Back to the grid" }));
+    expect(sent).toHaveLength(0);
+    await user.click(screen.getByRole("button", { name: "Save" }));
+    await user.click(await screen.findByRole("button", { name: "It will end so: save" }));
+    await waitFor(() => expect(sent).toHaveLength(1));
+    expect(sent[0]?.rows).toMatchObject([{ confirmsOpenEnd: true }, { confirmsOpenEnd: true }]);
+  });
+
+  test("asks about a shift that only the server's clock knows not to be over", async () => {
+    const issues = [
+      { path: ["lengthMin"], code: "open-end-unconfirmed", params: { time: "14:00" } },
+    ];
+    answerSaving(() => ({ refused: [{ index: 0, workerId: workerId(1), issues }] }));
+    const { user } = open(testDay(1));
+    act(() => runUp(1).focus());
+    await user.keyboard("100{Control>}{Enter}{/Control}");
+    expect(await screen.findByText(/This shift ends at 14:00, which lies ahead/)).toBeVisible();
+    const sent = answerSaving(saveAll);
+    await user.click(screen.getByRole("button", { name: "Save" }));
+    await user.click(await screen.findByRole("button", { name: "It will end so: save" }));
+    await waitFor(() => expect(sent[0]?.rows).toMatchObject([{ confirmsOpenEnd: true }]));
+  });
+
   test("that met somebody else's lets choose field by field", async () => {
     const theirs = savedShift(1, 2);
     const current = {
@@ -260,6 +314,100 @@ describe("saving", () => {
       ],
     });
   });
+});
+
+test("who meets another's saving has the day anew: only what differs waits for a choice", async () => {
+  const stale = testDay(4);
+  const savedAs = (number: number, minutes: number) => ({
+    ...savedShift(number),
+    tasks: [
+      { taskId: TASK.rigging, durationMin: 60, wornPct: 100, wornIsShiftWide: true },
+      { taskId: TASK.runUp, durationMin: minutes, wornPct: 100, wornIsShiftWide: true },
+      { taskId: TASK.control, durationMin: 300, wornPct: 100, wornIsShiftWide: true },
+    ],
+  });
+  // Somebody has saved 1 and 2 otherwise, and 3 as it was filled in.
+  const now = testDay([
+    gridRow(1, { saved: savedAs(1, 90) }),
+    gridRow(2, { saved: savedAs(2, 90) }),
+    gridRow(3, { saved: savedAs(3, 120) }),
+    gridRow(4),
+  ]);
+  answerSaving((rows) => ({
+    conflicts: rows.map(({ workerId: who }, index) => ({
+      index,
+      workerId: who,
+      current: now.rows.find(({ worker }) => worker.id === who)?.saved,
+    })),
+  }));
+  const save = vi.mocked(fetch).getMockImplementation();
+  vi.mocked(fetch).mockImplementation(async (address, init) =>
+    init?.method === "POST" && save
+      ? save(address, init)
+      : new Response(JSON.stringify(now), { status: 200 }),
+  );
+  const { user } = open(stale);
+  act(() => runUp(1).focus());
+  // 1 is typed, 3 confirmed as it was filled in.
+  await user.keyboard("100{Enter}{ArrowDown}{Shift>}{Enter}{/Shift}{Control>}{Enter}{/Control}");
+  await screen.findByRole("dialog", { name: "Someone saved this shift before you" });
+  expect(screen.getByText("2 saved, 2 wait:")).toBeVisible();
+  expect(row(2)).toHaveTextContent("saved");
+  expect(runUp(2)).toHaveTextContent(/^90$/);
+  expect(row(3)).toHaveTextContent("saved");
+  expect(row(4)).toHaveTextContent("waits");
+  expect(screen.getByText(/row 1 was saved by somebody else/)).toBeVisible();
+});
+
+test("a reading that governs says what the tasks give beside it, be it only a bound", () => {
+  const reading = (covers: "shift" | "part") => ({
+    runId: "00000000-0000-4000-8000-000000000800",
+    runRevision: 1,
+    readingId: "00000000-0000-4000-8000-000000000801",
+    instrumentId: INSTRUMENT,
+    instrumentClass: "dosimeter" as const,
+    durationMin: 480,
+    covers,
+    keptReason: null,
+    settings: {
+      criterionLevelDb: 90,
+      exchangeRateDb: 5 as const,
+      thresholdDb: 80,
+      weighting: "A" as const,
+      response: "slow" as const,
+    },
+    dosePct: 250,
+    averageDb: null,
+    lceqDb: null,
+    lasMaxDb: null,
+    peak: null,
+  });
+  const saved = {
+    ...savedShift(1),
+    tasks: [{ taskId: TASK.teardown, durationMin: 480, wornPct: 100, wornIsShiftWide: true }],
+  };
+  const view = testDay([
+    gridRow(1, { saved, readings: [reading("shift")] }),
+    gridRow(2, { saved: { ...saved, shiftId: shiftId(2) }, readings: [reading("part")] }),
+  ]);
+  open({
+    ...view,
+    settings: { ...view.settings, governingRuleSet: "us-general-industry", wearFromDb: 90 },
+    tasks: view.tasks.map((task) => ({
+      ...task,
+      level: task.level && { ...task.level, metric: { kind: "laeq" as const } },
+    })),
+  });
+  // An energy mean of 92 bounds the 5 dB average from above.
+  expect(row(1)).toHaveTextContent("250 %tasks ≤92.0");
+  expect(row(2)).toHaveTextContent("250 %does not govern");
+  // 250 % is a TWA of 90 + 16.61·lg 2.5 = 96.6 under threshold 80; each figure has one line, what it is the head.
+  const lines = [...row(1).querySelectorAll(".outside-line")].map(({ textContent }) => textContent);
+  expect(lines[0]).toBe("96.6Over 85");
+  expect(lines).toHaveLength(2);
+  expect(row(1)).not.toHaveTextContent("threshold");
+  const head = screen.getByRole("columnheader", { name: /^Without protection/ });
+  expect(head).toHaveTextContent("TWA, threshold 80TWA, threshold 90");
 });
 
 test("a run is entered with as many settings rows as the instrument has, and sent as one", async () => {

@@ -6,7 +6,7 @@ import type { EntryNotices as Notices } from "../../../shared/schemas/notice";
 import type { DayGridView } from "../../../shared/schemas/shift";
 import { Banner } from "../../components/banner";
 import { Button, ButtonLink } from "../../components/button";
-import { stripFrame } from "../../components/day-figures";
+import { outsideBases, stripFrame } from "../../components/day-figures";
 import { TextButton } from "../../components/link";
 import { Folio, PageHead } from "../../components/page";
 import { Status } from "../../components/status";
@@ -16,7 +16,7 @@ import { paths } from "../../paths";
 import { cellOf } from "./cells";
 import { gridColumns } from "./columns";
 import { DayGrid, type GridFocus } from "./day-grid";
-import { ConfirmDialog, ConflictDialog, ReasonDialog } from "./dialogs";
+import { ConfirmDialog, ConflictDialog, OpenEndsDialog, ReasonDialog } from "./dialogs";
 import { isSettled, type RowDraft } from "./draft";
 import type { DraftStore } from "./draft-store";
 import { EntryNotices } from "./entry-notices";
@@ -79,6 +79,7 @@ export function DayEntry({
   const [focus, setFocus] = useState<GridFocus>({ row: 0, column: 0, wish: 0 });
   const [said, setSaid] = useState("");
   const [asksReason, setAsksReason] = useState<number | null>(null);
+  const [openEnds, setOpenEnds] = useState<{ names: string[]; reason: string | null } | null>(null);
   const [choosing, setChoosing] = useState<string | null>(null);
   const [isConfirming, setIsConfirming] = useState(false);
 
@@ -87,22 +88,26 @@ export function DayEntry({
     () => gridColumns(view.tasks, draft.addedTaskIds),
     [view.tasks, draft.addedTaskIds],
   );
-  const layout = useMemo(() => gridLayout(columns, width), [columns, width]);
-  const { isWide } = layout;
   const { governing } = rulesOf(view);
+  const bases = useMemo(() => outsideBases(i18n, locale, governing), [i18n, locale, governing]);
+  const layout = useMemo(
+    () => gridLayout(columns, width, bases.length > 0),
+    [columns, width, bases],
+  );
+  const { isWide } = layout;
   const frame = useMemo((): GridFrame => {
     const names = new Map(view.tasks.map(({ id, name }) => [id, name]));
-    const rules = rulesOf(view).governing;
     return {
       columns,
       isWide,
-      strip: stripFrame(i18n, locale, rules.key, rules.version),
+      strip: stripFrame(i18n, locale, governing.key, governing.version),
+      outsideBases: bases,
       showsUncertainty:
         view.settings.usesUncertainty &&
-        rules.criteria.some(({ usesUncertainty }) => usesUncertainty),
+        governing.criteria.some(({ usesUncertainty }) => usesUncertainty),
       taskName: (id) => names.get(id) ?? "",
     };
-  }, [columns, isWide, view, i18n, locale]);
+  }, [columns, isWide, view, governing, bases, i18n, locale]);
 
   const states = found.map((one) => {
     const gridRow = gridRows.get(one.row.workerId);
@@ -116,10 +121,12 @@ export function DayEntry({
   const nameOf = (workerId: string) => gridRows.get(workerId)?.worker.name ?? "";
   const goTo = (place: Place) => setFocus(({ wish }) => ({ ...place, wish: wish + 1 }));
 
-  async function save(reason: string | null) {
+  async function save(reason: string | null, confirmsOpenEnd = false) {
     setSaid("");
-    const outcome = await entry.save(reason);
-    if (outcome === "reason") {
+    const outcome = await entry.save({ reason, confirmsOpenEnd });
+    if (typeof outcome === "object" && "openEnds" in outcome) {
+      setOpenEnds({ names: outcome.openEnds.map(nameOf), reason });
+    } else if (outcome === "reason") {
       setAsksReason(
         found.filter(({ row }) => row.base !== null && row.isTouched && !row.isAbsent).length,
       );
@@ -388,6 +395,16 @@ export function DayEntry({
           onReason={(reason) => {
             setAsksReason(null);
             void save(reason);
+          }}
+        />
+      )}
+      {openEnds && (
+        <OpenEndsDialog
+          names={openEnds.names}
+          onClose={() => setOpenEnds(null)}
+          onConfirm={() => {
+            setOpenEnds(null);
+            void save(openEnds.reason, true);
           }}
         />
       )}

@@ -33,7 +33,7 @@ import {
 } from "./paste";
 import { rowState } from "./row-state";
 import { withSoftHyphens } from "./syllables";
-import type { DayEntryState } from "./use-day-entry";
+import type { DayEntryState, StepsBack } from "./use-day-entry";
 import { columnName, unaccountedWords } from "./words";
 
 const ROW_PX = 48;
@@ -48,6 +48,7 @@ export interface GridFocus extends Place {
 interface Edit {
   readonly text: string;
   readonly before: RowDraft;
+  readonly begun: StepsBack;
   /** Begun by typing over the cell: the arrows then leave it. */
   readonly isOver: boolean;
 }
@@ -86,7 +87,7 @@ export function DayGrid({
   const [leaves, setLeaves] = useState(false);
   const [scroll, setScroll] = useState({ top: 0, heightPx: 800 });
   /** The row as it was before its worker was marked absent by the key that was pressed last. */
-  const begun = useRef<RowDraft | null>(null);
+  const begun = useRef<{ row: RowDraft; steps: StepsBack } | null>(null);
   const shape = { rowCount: draft.rows.length, columns };
   const isLong = draft.rows.length > MANY_ROWS;
   const selection = rangeOf(anchor ?? focus, focus);
@@ -183,6 +184,7 @@ export function DayGrid({
     setEdit({
       text: text ?? editText(row.cells[cell], locale, words),
       before: row,
+      begun: entry.beginStep(),
       isOver: text !== null,
     });
     if (text !== null) write(row, text);
@@ -215,17 +217,18 @@ export function DayGrid({
   function toggleAbsent() {
     const row = rowAt(focus.row);
     if (!row) return;
+    const steps = entry.beginStep();
     dispatch({ type: "set-absent", workerId: row.workerId, isAbsent: !row.isAbsent });
     go(focus);
     // Only now: going somewhere ends what an earlier press began.
-    begun.current = row.isAbsent ? null : row;
+    begun.current = row.isAbsent ? null : { row, steps };
   }
 
   /** The letter was the first of a word, and the worker is not absent: the word goes into the cell, whatever it is. */
-  function writeWord(row: RowDraft, text: string) {
-    dispatch({ type: "restore-row", row });
+  function writeWord({ row, steps }: { row: RowDraft; steps: StepsBack }, text: string) {
+    entry.abandon(row, steps);
     setAnchor(null);
-    setEdit({ text, before: row, isOver: true });
+    setEdit({ text, before: row, begun: steps, isOver: true });
     write(row, text);
   }
 
@@ -298,7 +301,7 @@ export function DayGrid({
   function onEditKey(event: KeyboardEvent): boolean {
     if (!edit) return false;
     if (event.key === "Escape") {
-      dispatch({ type: "restore-row", row: edit.before });
+      entry.abandon(edit.before, edit.begun);
       setEdit(null);
       return true;
     }
@@ -626,6 +629,9 @@ function GridHead({ frame, layout }: { frame: GridFrame; layout: GridLayout }) {
             <th scope="col" className="at-ear">
               {i18n.t("At the ear")}
               <span className="unit">{i18n.t("day, dB")}</span>
+              {!frame.strip.hasLimitAtEar && (
+                <span className="unit">{i18n.t("no limit there")}</span>
+              )}
             </th>
           )}
           <th scope="col" className="strip-head">
@@ -638,7 +644,11 @@ function GridHead({ frame, layout }: { frame: GridFrame; layout: GridLayout }) {
           {isWide && (
             <th scope="col" className="outside">
               {i18n.t("Without protection")}
-              <span className="unit">{i18n.t("dB")}</span>
+              {(frame.outsideBases.length > 0 ? frame.outsideBases : [i18n.t("dB")]).map((unit) => (
+                <span key={unit} className="unit">
+                  {unit}
+                </span>
+              ))}
             </th>
           )}
           <th scope="col" className="word">

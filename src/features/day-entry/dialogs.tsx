@@ -64,6 +64,42 @@ export function ReasonDialog({
   );
 }
 
+/** Shifts that have not ended: whether they are recorded ahead of that. */
+export function OpenEndsDialog({
+  names,
+  onConfirm,
+  onClose,
+}: {
+  names: readonly string[];
+  onConfirm: () => void;
+  onClose: () => void;
+}) {
+  const { i18n } = useLingui();
+  return (
+    <Dialog
+      isOpen
+      onClose={onClose}
+      title={i18n.t(
+        "{count, plural, one {# shift is not over yet} other {# shifts are not over yet}}",
+        { count: names.length },
+      )}
+      lead={i18n.t(
+        "A shift is recorded as it was. Save it ahead of its end only if it will surely end as it stands here.",
+      )}
+      actions={
+        <>
+          <Button kind="primary" onClick={onConfirm}>
+            {i18n.t("It will end so: save")}
+          </Button>
+          <Button onClick={onClose}>{i18n.t("Back to the grid")}</Button>
+        </>
+      }
+    >
+      <p>{names.join(", ")}.</p>
+    </Dialog>
+  );
+}
+
 /** Two people saved one shift: field by field, what stands. */
 export function ConflictDialog({
   entry,

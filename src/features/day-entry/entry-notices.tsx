@@ -1,9 +1,10 @@
 import { useLingui } from "@lingui/react";
 import { useMutation, useQuery, useQueryClient } from "@tanstack/react-query";
 import { useState } from "react";
-import { formatTime } from "../../../shared/format/date";
+import { formatInstant, formatTime } from "../../../shared/format/date";
 import type { EntryNotices as Notices } from "../../../shared/schemas/notice";
 import { NoticeLine, type NoticeLineState } from "../../components/notice-line";
+import { useLocale } from "../../lib/i18n";
 import { problemText } from "../../lib/problem-text";
 import { LookDialog } from "./dialogs";
 import { dayEntryQueries, handleNotices } from "./queries";
@@ -33,6 +34,7 @@ export function EntryNotices({
   onChange: (notices: Notices) => void;
 }) {
   const { i18n } = useLingui();
+  const locale = useLocale();
   const [isLooking, setIsLooking] = useState(false);
   const client = useQueryClient();
   const query = dayEntryQueries.notices(given.entryId);
@@ -60,6 +62,10 @@ export function EntryNotices({
         state={state}
         peopleCount={notices.people}
         time={time === null ? "" : formatTime(time, timeZone)}
+        isCorrection={notices.notices.some(({ replacesId }) => replacesId !== null)}
+        correctedAt={
+          notices.correctedAt === null ? null : formatInstant(notices.correctedAt, timeZone, locale)
+        }
         detail={
           handle.isError
             ? problemText(i18n, handle.error)

@@ -34,6 +34,48 @@ test("levels without protection and at the ear are there while typing", () => {
   expect(summary?.atEarDb).toBeLessThan(94.044);
 });
 
+test("a reading far past the most that the tasks leave possible is asked about, with the bound", () => {
+  const view = testDay([gridRow(1, { nominal: [{ taskId: TASK.teardown, durationMin: 480 }] })]);
+  const usual = {
+    criterionLevelDb: 90,
+    exchangeRateDb: 5 as const,
+    thresholdDb: 80,
+    weighting: "A" as const,
+    response: "slow" as const,
+  };
+  const us = {
+    ...view,
+    settings: { ...view.settings, governingRuleSet: "us-general-industry" },
+    instruments: view.instruments.map((one) => ({ ...one, presets: [usual] })),
+    tasks: view.tasks.map((task) => ({
+      ...task,
+      level: task.level && { ...task.level, metric: { kind: "laeq" as const } },
+    })),
+  };
+  const found = (dose: string) => {
+    const row = typed(openDay(us), { reading: dose });
+    return createRowEvaluator(us)({
+      ...row,
+      runSetup: {
+        instrumentId: INSTRUMENT,
+        settings: usual,
+        further: [],
+        durationMin: null,
+        covers: "shift",
+      },
+    });
+  };
+  // By hand: an LAeq of 92 bounds the 5 dB average by 92; 400 % is a TWA of 90 + 16.61·lg 4 = 100.0 (the rule rounds 16.6096).
+  const far = found("400 %").questions[0];
+  expect(far).toMatchObject({ kind: "far-off", tasksBound: "upper" });
+  expect(far?.kind === "far-off" && far.tasksDb).toBeCloseTo(92, 3);
+  expect(far?.kind === "far-off" && far.gapDb).toBeCloseTo(8.0, 2);
+  // Within the bound the two do not contradict each other, however far below it the reading lies.
+  const below = found("25 %");
+  expect(below.questions).toEqual([]);
+  expect(below.besideReading).toMatchObject({ tasksBound: "upper", gapDb: null });
+});
+
 test("more minutes than the shift: what is over, which cell, and nothing worked out", () => {
   const found = evaluate(
     { [taskCell(TASK.runUp)]: "165" },

@@ -13,9 +13,11 @@ import {
   type EnteredShift,
 } from "../../../shared/day/build-day-input";
 import { type DaySummary, summarizeDay } from "../../../shared/day/summarize-day";
+import type { LevelBound } from "../../../shared/format/level";
 import { ruleSetInForce, ruleSetVersion } from "../../../shared/rule-sets/index";
 import type { DayGridView, GridRow, GridTask, ShiftTaskInput } from "../../../shared/schemas/shift";
 import { atLocalTime, type LocalInstant } from "../../../shared/time/zone";
+import { type BesideReading, besideReading } from "./beside-reading";
 import { type CellFault, emptyCell, numberIn, unaccountedIn } from "./cells";
 import { type CellId, taskCell, wornCell } from "./columns";
 import {
@@ -67,6 +69,8 @@ export type RowQuestion =
       readonly cell: CellId;
       readonly readingDb: number;
       readonly tasksDb: number;
+      readonly tasksBound: LevelBound;
+      /** At least that much where the tasks are only bounded. */
       readonly gapDb: number;
     };
 
@@ -96,6 +100,8 @@ export interface RowEvaluation {
   readonly input: DayInput | null;
   readonly evaluation: DayEvaluation | null;
   readonly summary: DaySummary | null;
+  /** Null where no reading governs. */
+  readonly besideReading: BesideReading | null;
   readonly protectors: readonly RowProtector[];
   /** Loud work with nothing assigned for it. */
   readonly isBare: boolean;
@@ -182,6 +188,7 @@ export function createRowEvaluator(view: DayGridView): EvaluateRow {
       input: null,
       evaluation: null,
       summary: null,
+      besideReading: null,
       get protectors() {
         return protectors();
       },
@@ -211,12 +218,13 @@ export function createRowEvaluator(view: DayGridView): EvaluateRow {
     });
     const evaluation = once(() => evaluateDay(input(), governing, comparison));
     const summary = once(() => summarizeDay(input(), evaluation(), governing));
+    const beside = once(() => besideReading(input(), evaluation(), governing));
     return {
       row,
       ...times,
       values: { localStart: start, lengthMin, tasks: times.tasks, unaccounted },
       problems: refusals(row),
-      questions: questionsOf(row, gridRow, times, evaluation, tasks),
+      questions: questionsOf(row, gridRow, times, beside, tasks),
       get input() {
         return input();
       },
@@ -225,6 +233,9 @@ export function createRowEvaluator(view: DayGridView): EvaluateRow {
       },
       get summary() {
         return hasOtherShift ? null : summary();
+      },
+      get besideReading() {
+        return hasOtherShift ? null : beside();
       },
       get protectors() {
         return protectors();
@@ -420,7 +431,7 @@ function questionsOf(
   row: RowDraft,
   gridRow: GridRow,
   times: Times,
-  evaluate: () => DayEvaluation,
+  beside: () => BesideReading | null,
   tasks: ReadonlyMap<string, GridTask>,
 ): RowQuestion[] {
   const questions: RowQuestion[] = [];
@@ -437,16 +448,21 @@ function questionsOf(
     questions.push({ kind: "long-stay", key, cell, taskName, durationMin, longestMin });
   }
   if (row.isRunTouched && settingsRows(row, gridRow).some(({ cell }) => cell?.mark === "typed")) {
-    const { readingGapDb, tasksDb, outsideDb } = evaluate();
-    const isKnown = readingGapDb !== null && tasksDb !== null && outsideDb !== null;
-    if (isKnown && Math.abs(readingGapDb) >= FAR_OFF_DB) {
+    const found = beside();
+    if (
+      found?.readingDb != null &&
+      found.tasksDb !== null &&
+      found.gapDb !== null &&
+      Math.abs(found.gapDb) >= FAR_OFF_DB
+    ) {
       questions.push({
         kind: "far-off",
-        key: `far-off ${outsideDb} ${tasksDb}`,
+        key: `far-off ${found.readingDb} ${found.tasksDb}`,
         cell: "reading",
-        readingDb: outsideDb,
-        tasksDb,
-        gapDb: readingGapDb,
+        readingDb: found.readingDb,
+        tasksDb: found.tasksDb,
+        tasksBound: found.tasksBound,
+        gapDb: found.gapDb,
       });
     }
   }

@@ -40,6 +40,13 @@ describe("six tasks without scrolling sideways", () => {
     expect(minWidthPx).toBeLessThanOrEqual(AT_1600);
   });
 
+  test("and under a rule of doses, a line for each of its figures, at 1600", () => {
+    const { isWide, minWidthPx, fixedPx } = gridLayout(columnsOf(SHORT), AT_1600, true);
+    expect(isWide).toBe(true);
+    expect(minWidthPx).toBeLessThanOrEqual(AT_1600);
+    expect(fixedPx.outside).toBeGreaterThan(gridLayout(columnsOf(SHORT), AT_1600).fixedPx.outside);
+  });
+
   test("with strip and word at 1280", () => {
     const { isWide, minWidthPx } = gridLayout(columnsOf(SHORT), AT_1280);
     expect(isWide).toBe(false);

@@ -24,6 +24,10 @@ const WIDE_PX: Widths = {
   outside: 116,
   word: 112,
 };
+/** Under a rule of doses: a figure and its verdict beside one another, and at the ear neither verdict nor uncertainty. */
+const DOSE_PX: Pick<Widths, "ear" | "outside" | "word"> = { ear: 96, outside: 138, word: 132 };
+/** The deciding task and its level have one line: what of the room to spare goes there before the protectors' names. */
+const MOST_WORD_PX = 156;
 const NARROW_PX: Widths = {
   who: 138,
   start: 58,
@@ -84,7 +88,12 @@ export interface GridLayout {
  * Widths of the columns in the room that there is. Task heads give way first, longest last: their words are broken before
  * the worked-out half loses its figures, and that before anything has to be scrolled to.
  */
-export function gridLayout(columns: readonly GridColumn[], roomPx: number | null): GridLayout {
+export function gridLayout(
+  columns: readonly GridColumn[],
+  roomPx: number | null,
+  isOfDoses = false,
+): GridLayout {
+  const widePx = isOfDoses ? { ...WIDE_PX, ...DOSE_PX } : WIDE_PX;
   const tasks = columns.flatMap(({ task }) => (task ? [task] : []));
   const needs = tasks.map(({ id, name }) => {
     const leastPx = brokenPx(name);
@@ -92,11 +101,11 @@ export function gridLayout(columns: readonly GridColumn[], roomPx: number | null
   });
   const leastPx = needs.reduce((sum, need) => sum + need.leastPx, 0);
   const sumOf = (widths: Widths) => Object.values(widths).reduce((sum, px) => sum + px, 0);
-  const isWide = roomPx === null || sumOf(WIDE_PX) + leastPx <= roomPx;
-  const fixedPx = isWide ? WIDE_PX : NARROW_PX;
+  const isWide = roomPx === null || sumOf(widePx) + leastPx <= roomPx;
+  const neededPx = isWide ? widePx : NARROW_PX;
   // Where it has to be scrolled all the same, nothing is broken for it.
-  const hasRoom = roomPx !== null && sumOf(fixedPx) + leastPx <= roomPx;
-  let sparePx = hasRoom ? roomPx - sumOf(fixedPx) - leastPx : Number.POSITIVE_INFINITY;
+  const hasRoom = roomPx !== null && sumOf(neededPx) + leastPx <= roomPx;
+  let sparePx = hasRoom ? roomPx - sumOf(neededPx) - leastPx : Number.POSITIVE_INFINITY;
   const tasksPx = new Map<string, number>();
   const broken = new Set<string>();
   for (const { id, leastPx: px, wishPx } of needs.toSorted(
@@ -107,6 +116,11 @@ export function gridLayout(columns: readonly GridColumn[], roomPx: number | null
     else broken.add(id);
     tasksPx.set(id, isWhole ? wishPx : px);
   }
+  const word =
+    isWide && hasRoom
+      ? Math.min(MOST_WORD_PX, neededPx.word + Math.floor(sparePx / 2))
+      : neededPx.word;
+  const fixedPx = { ...neededPx, word };
   const minWidthPx = [...tasksPx.values()].reduce((sum, px) => sum + px, sumOf(fixedPx));
   return { isWide, fixedPx, tasksPx, broken, minWidthPx };
 }

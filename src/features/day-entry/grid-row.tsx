@@ -1,3 +1,4 @@
+import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { type InputHTMLAttributes, memo, type ReactNode } from "react";
 import { formatMinutes } from "../../../shared/format/duration";
@@ -10,23 +11,25 @@ import {
   AtEarFigure,
   isBoundReason,
   OutsideFigure,
+  OutsideLines,
   outsideVerdict,
   outsideWords,
 } from "../../components/day-figures";
 import { DropStrip, type DropStripProps, StripGround } from "../../components/drop-strip";
+import { LevelFigure } from "../../components/level-figure";
 import { TextButton } from "../../components/link";
 import { ProtectorWord } from "../../components/protector-word";
 import { stripLabel } from "../../components/strip-label";
 import { type StripFrame, stripOfDay } from "../../components/strip-of-day";
 import { Verdict } from "../../components/verdict";
 import { useLocale } from "../../lib/i18n";
+import type { BesideReading } from "./beside-reading";
 import { type Cell, editText, numberIn, readingIn, unaccountedIn } from "./cells";
 import type { CellId, GridColumn } from "./columns";
 import { enteredReadings } from "./draft";
 import type { RowEvaluation, RowProblem, RowQuestion } from "./evaluate-rows";
 import type { RowState } from "./row-state";
 import { rowStateWord } from "./row-words";
-import { withSoftHyphens } from "./syllables";
 import {
   columnName,
   problemWords,
@@ -43,6 +46,8 @@ export interface GridFrame {
   readonly columns: readonly GridColumn[];
   readonly isWide: boolean;
   readonly strip: StripFrame;
+  /** What the figures without protection are, where the rule tells several apart: a line of the cell each. */
+  readonly outsideBases: readonly string[];
   /** The uncertainty counts in the verdicts of this site and its rules: only then it stands beside a figure. */
   readonly showsUncertainty: boolean;
   readonly taskName: (id: string) => string;
@@ -302,8 +307,6 @@ function ReadingContent({
   const count = enteredReadings(found.row, gridRow).length;
   const others = value ? count - 1 : count;
   if (count === 0) return null;
-  const { evaluation } = found;
-  const governs = evaluation !== null && evaluation.tasksDb !== null;
   return (
     <span className="two-lines">
       <span>
@@ -315,21 +318,28 @@ function ReadingContent({
         {value?.kind === "level" && formatLevel(value.levelDb, locale)}
         {value?.kind === "dose" && `${editNumber(value.dosePct, locale)} %`}
       </span>
-      {governs && (
-        <span className="under">
-          {isWide
-            ? i18n.t("tasks {level}, {gap}", {
-                level: formatLevel(evaluation.tasksDb, locale),
-                gap: formatLevelChange(evaluation.readingGapDb, locale),
-              })
-            : i18n.t("tasks {gap}", {
-                gap: formatLevelChange(-(evaluation.readingGapDb ?? 0), locale),
-              })}
-        </span>
+      {found.evaluation && (
+        <span className="under">{besideWords(i18n, locale, found.besideReading, isWide)}</span>
       )}
-      {!governs && evaluation && <span className="under">{i18n.t("does not govern")}</span>}
     </span>
   );
+}
+
+/** What the tasks give beside a reading that governs, or that it does not. */
+function besideWords(
+  i18n: I18n,
+  locale: Locale,
+  beside: BesideReading | null,
+  isWide: boolean,
+): string | null {
+  if (!beside) return i18n.t("does not govern");
+  const { tasksDb, tasksBound, gapDb } = beside;
+  if (tasksDb === null) return null;
+  const level = formatLevel(tasksDb, locale, tasksBound);
+  if (tasksBound !== "exact" || gapDb === null) return i18n.t("tasks {level}", { level });
+  return isWide
+    ? i18n.t("tasks {level}, {gap}", { level, gap: formatLevelChange(gapDb, locale) })
+    : i18n.t("tasks {gap}", { gap: formatLevelChange(-gapDb, locale) });
 }
 
 function ProtectorContent({ found }: { found: RowEvaluation }) {
@@ -439,10 +449,17 @@ function ResultCells(props: GridRowProps & { rowSpan: number | undefined; at: nu
         <td className="at-ear" rowSpan={rowSpan} aria-hidden="true">
           {row.isAbsent ? (
             "–"
-          ) : figures ? (
+          ) : !figures ? (
+            <Verdict verdict="not-assessed" />
+          ) : frame.strip.hasLimitAtEar ? (
             <AtEarFigure figures={figures} />
           ) : (
-            <Verdict verdict="not-assessed" />
+            <LevelFigure
+              levelDb={figures.atEarDb}
+              uncertaintyDb={figures.atEarBound === "exact" ? figures.uncertaintyDb : null}
+              bound={figures.atEarBound}
+              isStrong={figures.atEarDb !== null}
+            />
           )}
         </td>
       )}
@@ -455,7 +472,13 @@ function ResultCells(props: GridRowProps & { rowSpan: number | undefined; at: nu
       </td>
       {frame.isWide && (
         <td className="outside" rowSpan={rowSpan} aria-hidden="true">
-          {figures && !row.isAbsent ? <OutsideFigure figures={figures} /> : "–"}
+          {!figures || row.isAbsent ? (
+            "–"
+          ) : frame.outsideBases.length > 0 ? (
+            <OutsideLines figures={figures} />
+          ) : (
+            <OutsideFigure figures={figures} />
+          )}
         </td>
       )}
       <td {...place(props, at)} className="word" rowSpan={rowSpan} aria-label={label}>
@@ -507,12 +530,12 @@ function Word({ found, frame }: GridRowProps) {
       isOpen={isBoundReason(summary.reason)}
       beneath={
         frame.isWide && summary.decidingTaskName && summary.whileWornDb !== null ? (
-          <>
-            {withSoftHyphens(summary.decidingTaskName)}{" "}
+          <span className="deciding" title={summary.decidingTaskName}>
+            <span className="clip">{summary.decidingTaskName}</span>{" "}
             <span className="mono">
               {formatLevel(summary.whileWornDb, locale, summary.atEarBound)}
             </span>
-          </>
+          </span>
         ) : undefined
       }
     />

@@ -5,13 +5,19 @@ import { DayGridView, type DayRowInput, DaySaveView } from "../../../shared/sche
 import { CrewDays, WaitingView } from "../../../shared/schemas/waiting";
 import { api } from "../../lib/api";
 
+export const fetchDay = (
+  crewId: string,
+  date: string,
+  signal?: AbortSignal,
+): Promise<DayGridView> =>
+  api.get(`/crews/${crewId}/day`, { query: { date }, schema: DayGridView, signal });
+
 export const dayEntryQueries = {
   all: ["day-entry"] as const,
   grid: (crewId: string, date: string) =>
     queryOptions({
       queryKey: [...dayEntryQueries.all, "grid", crewId, date],
-      queryFn: ({ signal }) =>
-        api.get(`/crews/${crewId}/day`, { query: { date }, schema: DayGridView, signal }),
+      queryFn: ({ signal }) => fetchDay(crewId, date, signal),
     }),
   crews: () =>
     queryOptions({

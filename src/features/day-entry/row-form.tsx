@@ -11,6 +11,7 @@ import { Field } from "../../components/form";
 import { TextButton, TextLink } from "../../components/link";
 import { COMMON_SETTINGS, isSameSettings } from "../../components/meter-settings";
 import { useLocale } from "../../lib/i18n";
+import { tooManyText } from "../../lib/too-many";
 import { paths } from "../../paths";
 import { type Cell, cellOf, editText, emptyCell, parseCell, unaccountedIn } from "./cells";
 import { type CellId, type GridColumn, taskCell, wornCell } from "./columns";
@@ -21,6 +22,8 @@ import { faultText, problemWords, settingsText, unaccountedWords } from "./words
 
 /** As many as a run may have. */
 const MOST_READINGS = 12;
+/** The server takes no more. */
+const LONGEST_NOTE = 10_000;
 
 interface RowFormProps {
   readonly entry: DayEntryState;
@@ -115,13 +118,12 @@ export function RowForm(props: RowFormProps) {
         </details>
       )}
       <Reading {...props} />
-      <Field label={i18n.t("Note")} isOptional error={undefined}>
+      <Field label={i18n.t("Note")} isOptional error={tooManyText(i18n, row.note, LONGEST_NOTE)}>
         {(wires) => (
           <textarea
             {...wires}
             className="input"
             rows={2}
-            maxLength={10_000}
             value={row.note}
             onChange={(event) =>
               entry.dispatch({ type: "patch-row", workerId, patch: { note: event.target.value } })

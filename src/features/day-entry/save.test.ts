@@ -16,6 +16,7 @@ const noNotices = {
   state: "none" as const,
   people: 0,
   notices: [],
+  correctedAt: null,
 };
 const reply = (more: Partial<DaySaveView>): DaySaveView => ({
   entryId,

@@ -5,6 +5,7 @@ import type {
   GridRow,
   SavedShift,
 } from "../../../shared/schemas/shift";
+import { isEndAhead } from "../../lib/end-ahead";
 import {
   type DayDraft,
   enteredReadings,
@@ -26,6 +27,8 @@ export interface Collected {
   readonly sent: readonly RowDraft[];
   /** Saved shifts that change: they need a reason. */
   readonly corrections: readonly string[];
+  /** Shifts whose end still lies ahead: to be confirmed. */
+  readonly openEnds: readonly string[];
   /** Typed back to what is saved already: nothing to send. */
   readonly unchanged: readonly string[];
 }
@@ -78,10 +81,13 @@ export function collectRows(
   view: DayGridView,
   evaluate: EvaluateRow,
   reason: string | null,
+  confirmsOpenEnd = false,
+  nowMs = Date.now(),
 ): Collected {
   const rows: DayRowInput[] = [];
   const sent: RowDraft[] = [];
   const corrections: string[] = [];
+  const openEnds: string[] = [];
   const unchanged: string[] = [];
   const gridRows = new Map(view.rows.map((row) => [row.worker.id, row]));
   for (const row of draft.rows) {
@@ -116,6 +122,11 @@ export function collectRows(
     }
     const isCorrection = (row.base !== null && !isSame) || (run?.runId ?? null) !== null;
     if (isCorrection) corrections.push(workerId);
+    const isOpen =
+      !isSame &&
+      (row.refused.some(({ code }) => code === "open-end-unconfirmed") ||
+        isEndAhead(view.date, { ...values, whichHour: row.whichHour }, view.crew.timeZone, nowMs));
+    if (isOpen) openEnds.push(workerId);
     rows.push({
       kind: "worked",
       workerId,
@@ -130,11 +141,12 @@ export function collectRows(
       tasks: inSavedOrder(values.tasks, saved),
       note: row.note === "" ? null : row.note,
       confirmsWholeDay: row.confirmsWholeDay,
+      confirmsOpenEnd: isOpen && confirmsOpenEnd,
       run,
     });
     sent.push(row);
   }
-  return { rows, sent, corrections, unchanged };
+  return { rows, sent, corrections, openEnds, unchanged };
 }
 
 function inSavedOrder(tasks: RowValues["tasks"], saved: SavedShift | null): Worked["tasks"] {

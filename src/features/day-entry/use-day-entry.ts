@@ -2,12 +2,14 @@ import { useMutation } from "@tanstack/react-query";
 import { useCallback, useEffect, useMemo, useRef, useState } from "react";
 import type { DayGridView, GridRow } from "../../../shared/schemas/shift";
 import { ApiError, newChangeKey } from "../../lib/api";
+import { settleSame } from "./conflicts";
 import {
   type DayDraft,
   type DraftAction,
   isBehind,
   isSettled,
   openDay,
+  type RowDraft,
   rebaseDraft,
   reduceDraft,
 } from "./draft";
@@ -18,7 +20,7 @@ import {
   type RowEvaluation,
   usualSetup,
 } from "./evaluate-rows";
-import { saveDay } from "./queries";
+import { fetchDay, saveDay } from "./queries";
 import { type Collected, collectRows, countRows, draftAfter, viewAfter } from "./save";
 
 const KEEP_AFTER_MS = 250;
@@ -33,6 +35,20 @@ export interface SaveOutcome {
   readonly conflict: string | null;
 }
 
+/** What was asked before saving, and the answers. */
+export interface SaveAnswers {
+  readonly reason: string | null;
+  readonly confirmsOpenEnd: boolean;
+}
+
+/** Shifts that are not over yet. */
+export interface OpenEnds {
+  readonly openEnds: readonly string[];
+}
+
+/** The drafts that can be gone back to, the last one first to be taken. */
+export type StepsBack = readonly DayDraft[];
+
 export interface DayEntryState {
   readonly view: DayGridView;
   readonly draft: DayDraft;
@@ -41,6 +57,10 @@ export interface DayEntryState {
   readonly dispatch: (action: DraftAction) => void;
   /** Takes back the last change: a paste, a fill, a typed cell. */
   readonly undo: () => void;
+  /** Where a cell begins to be written: its typing is a step of its own, which `abandon` forgets. */
+  readonly beginStep: () => StepsBack;
+  /** Puts a row back as it was when a step began, as if nothing had been typed since. */
+  readonly abandon: (row: RowDraft, begun: StepsBack) => void;
   /** When the draft that was restored had been kept; null where none was. */
   readonly restoredAt: string | null;
   readonly dropDraft: () => void;
@@ -48,8 +68,13 @@ export interface DayEntryState {
   readonly behind: readonly string[];
   readonly isSaving: boolean;
   readonly saveError: unknown;
-  /** Resolves to "reason" where saved shifts change and nobody has said why. */
-  readonly save: (reason: string | null) => Promise<SaveOutcome | "reason" | "nothing" | "failed">;
+  /**
+   * Resolves to "reason" where saved shifts change and nobody has said why, and to the workers whose shift ends in the
+   * future where nobody has confirmed that.
+   */
+  readonly save: (
+    answers: SaveAnswers,
+  ) => Promise<SaveOutcome | OpenEnds | "reason" | "nothing" | "failed">;
 }
 
 /** The request's outcome is not known: it may have been stored, and has to go again under the same key. */
@@ -70,7 +95,7 @@ export function useDayEntry(
   const [restoredAt, setRestoredAt] = useState(
     stored && stored.rows.length > 0 ? stored.keptAt : null,
   );
-  const past = useRef<DayDraft[]>([]);
+  const past = useRef<StepsBack>([]);
   const pending = useRef<PendingSave | null>(stored?.pending ?? null);
   const latest = useRef({ draft, view });
   latest.current = { draft, view };
@@ -79,7 +104,7 @@ export function useDayEntry(
   useEffect(() => {
     if (seenView.current === view) return;
     seenView.current = view;
-    setDraft((known) => rebaseDraft(known, view));
+    setDraft((known) => settleSame(rebaseDraft(known, view), view));
   }, [view]);
 
   useEffect(() => {
@@ -98,25 +123,45 @@ export function useDayEntry(
   const found = useMemo(() => draft.rows.map(evaluate), [draft.rows, evaluate]);
 
   const lastTyped = useRef("");
-  const dispatch = useCallback((action: DraftAction) => {
-    const { draft: known, view: now } = latest.current;
-    const next = reduceDraft(known, withSetup(action, known, now));
-    if (next === known) return;
-    const [only] = action.type === "set-cells" && action.changes.length === 1 ? action.changes : [];
-    const typed = only ? `${only.workerId} ${only.cell}` : "";
-    // Letter by letter in one cell is one step back.
-    if (typed === "" || typed !== lastTyped.current) {
-      past.current = [...past.current.slice(-STEPS_BACK), known];
-    }
-    lastTyped.current = typed;
-    latest.current = { draft: next, view: now };
+  const show = useCallback((next: DayDraft) => {
+    latest.current = { ...latest.current, draft: next };
     setDraft(next);
   }, []);
+  const dispatch = useCallback(
+    (action: DraftAction) => {
+      const { draft: known, view: now } = latest.current;
+      const next = reduceDraft(known, withSetup(action, known, now));
+      if (next === known) return;
+      const [only] =
+        action.type === "set-cells" && action.changes.length === 1 ? action.changes : [];
+      const typed = only ? `${only.workerId} ${only.cell}` : "";
+      // Letter by letter in one cell is one step back.
+      if (typed === "" || typed !== lastTyped.current) {
+        past.current = [...past.current.slice(-STEPS_BACK), known];
+      }
+      lastTyped.current = typed;
+      show(next);
+    },
+    [show],
+  );
   const undo = useCallback(() => {
-    const before = past.current.pop();
+    const before = past.current.at(-1);
+    past.current = past.current.slice(0, -1);
     lastTyped.current = "";
-    if (before) setDraft(before);
+    if (before) show(before);
+  }, [show]);
+  const beginStep = useCallback(() => {
+    lastTyped.current = "";
+    return past.current;
   }, []);
+  const abandon = useCallback(
+    (row: RowDraft, begun: StepsBack) => {
+      past.current = begun;
+      lastTyped.current = "";
+      show(reduceDraft(latest.current.draft, { type: "restore-row", row }));
+    },
+    [show],
+  );
 
   const mutation = useMutation({
     mutationFn: ({ collected, sent }: { collected: Collected; sent: PendingSave }) => {
@@ -125,11 +170,12 @@ export function useDayEntry(
     },
   });
 
-  async function save(reason: string | null) {
+  async function save({ reason, confirmsOpenEnd }: SaveAnswers) {
     // What was chosen a moment ago is not drawn yet, and belongs to it all the same.
     const { draft, view } = latest.current;
-    const collected = collectRows(draft, view, evaluate, reason);
+    const collected = collectRows(draft, view, evaluate, reason, confirmsOpenEnd);
     if (collected.corrections.length > 0 && reason === null) return "reason" as const;
+    if (collected.openEnds.length > 0 && !confirmsOpenEnd) return { openEnds: collected.openEnds };
     if (collected.rows.length === 0) {
       if (collected.unchanged.length === 0) return "nothing" as const;
       const next = draftAfter(draft, view, { saved: [], refused: [], conflicts: [] }, collected);
@@ -146,8 +192,12 @@ export function useDayEntry(
       const reply = await mutation.mutateAsync({ collected, sent });
       pending.current = null;
       past.current = [];
-      const after = viewAfter(latest.current.view, reply, collected.rows);
-      const next = draftAfter(latest.current.draft, after, reply, collected);
+      const isMet = reply.conflicts.length > 0;
+      const anew = isMet ? await dayAnew(latest.current.view) : latest.current.view;
+      const after = viewAfter(anew, reply, collected.rows);
+      const answered = draftAfter(latest.current.draft, after, reply, collected);
+      const next = isMet ? settleSame(rebaseDraft(answered, after), after) : answered;
+      const stillBehind = behindIn(next, after);
       seenView.current = after;
       setDraft(next);
       setRestoredAt(null);
@@ -156,7 +206,8 @@ export function useDayEntry(
       const savedWorkers = new Set(reply.saved.map(({ workerId }) => workerId));
       return {
         ...outcome(savedWorkers.size, next, after),
-        conflict: reply.conflicts[0]?.workerId ?? null,
+        conflict:
+          reply.conflicts.find(({ workerId }) => stillBehind.includes(workerId))?.workerId ?? null,
       };
     } catch (error) {
       if (!isOutcomeOpen(error)) pending.current = null;
@@ -165,13 +216,7 @@ export function useDayEntry(
     }
   }
 
-  const gridRows = useMemo(() => new Map(view.rows.map((row) => [row.worker.id, row])), [view]);
-  const behind = draft.rows
-    .filter((row) => {
-      const gridRow = gridRows.get(row.workerId);
-      return gridRow !== undefined && isBehind(row, gridRow);
-    })
-    .map(({ workerId }) => workerId);
+  const behind = behindIn(draft, view);
 
   return {
     view,
@@ -180,6 +225,8 @@ export function useDayEntry(
     evaluate,
     dispatch,
     undo,
+    beginStep,
+    abandon,
     restoredAt,
     dropDraft() {
       pending.current = null;
@@ -191,6 +238,23 @@ export function useDayEntry(
     saveError: mutation.error,
     save,
   };
+}
+
+/** Who met somebody else's saving has missed others too: the day as it stands now, or what is known if it can't be had. */
+async function dayAnew(view: DayGridView): Promise<DayGridView> {
+  try {
+    return await fetchDay(view.crew.id, view.date);
+  } catch {
+    return view;
+  }
+}
+
+function behindIn(draft: DayDraft, view: DayGridView): string[] {
+  const gridRows = new Map(view.rows.map((row) => [row.worker.id, row]));
+  return draft.rows.flatMap((row) => {
+    const gridRow = gridRows.get(row.workerId);
+    return gridRow && isBehind(row, gridRow) ? [row.workerId] : [];
+  });
 }
 
 /** A reading typed into a cell is taken under the settings of the last one, until somebody says otherwise. */

@@ -105,6 +105,14 @@ function refusalText(i18n: I18n, { code, params, path }: RowIssue, locale: Local
       return i18n.t(
         "This instrument had no certificate on that day. Record the run on its own page, with the reason why it is kept.",
       );
+    case "shorter-than-shift":
+      return i18n.t(
+        "The run lasted {run} of a shift of {shift}: say under “More on this row” that it covers a part, or record it on its own page with the reason.",
+        {
+          run: formatDuration(Number(params.coveredMin), locale),
+          shift: formatDuration(Number(params.shiftMin), locale),
+        },
+      );
     case "instrument-unknown":
       return i18n.t("This instrument is not known here.");
     case "worked-that-day":
@@ -225,12 +233,20 @@ export function questionWords(i18n: I18n, question: RowQuestion, locale: Locale)
       }),
     };
   }
+  const { readingDb, tasksDb, tasksBound, gapDb } = question;
+  const tasks = formatLevel(tasksDb, locale, tasksBound);
   return {
-    title: i18n.t("Reading {level}?", { level: formatLevel(question.readingDb, locale) }),
-    mend: i18n.t("The tasks give {tasks}: {gap} dB.", {
-      tasks: formatLevel(question.tasksDb, locale),
-      gap: formatLevelChange(question.gapDb, locale),
-    }),
+    title: i18n.t("Reading {level}?", { level: formatLevel(readingDb, locale) }),
+    mend:
+      tasksBound === "exact"
+        ? i18n.t("The tasks give {tasks}: {gap} dB.", {
+            tasks,
+            gap: formatLevelChange(gapDb, locale),
+          })
+        : i18n.t("The tasks give {tasks}: at least {gap} dB away.", {
+            tasks,
+            gap: formatLevel(Math.abs(gapDb), locale),
+          }),
   };
 }
 

@@ -5,6 +5,7 @@ import { findingStateWord, findingWord } from "../../../shared/findings/words";
 import { formatShortDate } from "../../../shared/format/date";
 import { formatNumber } from "../../../shared/format/number";
 import type { Locale } from "../../../shared/i18n/index";
+import { isolate } from "../../../shared/i18n/isolate";
 import type { FindingRow } from "../../../shared/schemas/finding";
 import { type DataColumn, DataTable, type DataTableProps } from "../../components/data-table";
 import {
@@ -93,7 +94,7 @@ export function FindingsTable({
           <TextLink to={paths.finding(finding.id)}>{findingWord(i18n, finding.kind)}</TextLink>
           <span className="beneath">
             {findingStateWord(i18n, finding.state)}
-            {finding.ownerName && `, ${finding.ownerName}`}
+            {finding.ownerName && `, ${isolate(finding.ownerName)}`}
           </span>
         </span>
       ),

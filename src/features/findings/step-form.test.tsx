@@ -41,6 +41,7 @@ const view = (overrides: Partial<FindingView> = {}): FindingView =>
     steps: [],
     evidence: [],
     told: [],
+    untold: null,
     ...overrides,
   });
 

@@ -15,11 +15,11 @@ import {
   TextAreaField,
   useSchemaForm,
 } from "../../components/form";
+import { FormProblem } from "../../components/form-problem";
 import { Status } from "../../components/status";
 import { ApiError, newChangeKey } from "../../lib/api";
 import { useLocale } from "../../lib/i18n";
 import { useMoveFocus } from "../../lib/move-focus";
-import { problemText } from "../../lib/problem-text";
 import { savedMeanwhile } from "../../lib/stale";
 import { useFindingStep } from "./queries";
 
@@ -178,7 +178,10 @@ function useSend({ finding, onDone }: StepProps) {
 function DueForm(props: StepProps) {
   const { i18n } = useLingui();
   const send = useSend(props);
-  const form = useSchemaForm(DueStep, { defaultValues: { dueOn: props.finding.dueOn } });
+  const form = useSchemaForm(DueStep, {
+    defaultValues: { dueOn: props.finding.dueOn },
+    keepAs: props.finding.id,
+  });
   return (
     <Form
       aria-label={props.label}
@@ -208,7 +211,10 @@ function TextForm(props: StepProps & { kind: Exclude<StepKind, "take-in-hand"> }
   const { kind } = props;
   const send = useSend(props);
   const schema = kind === "comment" ? CommentStep : kind === "mark-done" ? FreeTextStep : TextStep;
-  const form = useSchemaForm(schema, { defaultValues: { text: "" } });
+  const form = useSchemaForm(schema, {
+    defaultValues: { text: "" },
+    keepAs: `${kind} ${props.finding.id}`,
+  });
   const labels = {
     "mark-done": i18n.t("What was done"),
     cannot: i18n.t("Can’t, because"),
@@ -250,11 +256,7 @@ function StepEnd({
   const isConflict = send.error instanceof ApiError && send.error.status === 412;
   return (
     <>
-      {send.error && !isConflict && (
-        <p className="field-error" role="alert">
-          {problemText(i18n, send.error)}
-        </p>
-      )}
+      {!isConflict && <FormProblem error={send.error} />}
       <FormActions>
         <SubmitButton isBusy={send.isPending}>{label}</SubmitButton>
         <Button onClick={onCancel}>{i18n.t("Leave it")}</Button>

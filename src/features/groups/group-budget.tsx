@@ -1,8 +1,9 @@
 import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
-import { formatShare } from "../../../shared/format/dose";
+import { formatChance } from "../../../shared/format/dose";
 import { formatLevel, formatUncertainty } from "../../../shared/format/level";
 import { formatNumber } from "../../../shared/format/number";
+import { withoutStop } from "../../../shared/format/words";
 import type { BudgetView, GroupBudgetView } from "../../../shared/schemas/group";
 import { DataTable } from "../../components/data-table";
 import { ShareBar } from "../../components/share-bar";
@@ -12,10 +13,10 @@ import { instrumentClassWord, strategyWord } from "../../lib/register-words";
 type Item = BudgetView["items"][number];
 type Narrowing = BudgetView["narrowings"][number];
 
-/** Below this share a part is named with the rest: the picture would only show a line. */
+/** Below this share a part stands with the rest: the picture would only show a line, the table a row of noughts. */
 const SMALL_SHARE_PCT = 1;
 const MOST_NARROWINGS = 3;
-/** A change that narrows U by less is named only where nothing narrows it more. */
+/** A change that narrows U by less is not worth the measuring. */
 const WORTH_NAMING_DB = 0.05;
 
 function sourceWord(i18n: I18n, source: Item["source"]): string {
@@ -80,6 +81,58 @@ export function changeWords(
   }
 }
 
+function KeptReasons({ reasons }: { reasons: readonly string[] }) {
+  const { i18n } = useLingui();
+  return reasons.map((reason) => (
+    <p key={reason} className="group-kept">
+      <b>{i18n.t("Kept: {reason}.", { reason: withoutStop(reason) })}</b>{" "}
+      {i18n.t("The result no longer bears the standard’s name.")}
+    </p>
+  ));
+}
+
+/** A survey whose samples are those of the levels in force: its budget stands above already. */
+export function AsInForce({
+  budget,
+  keptReasons,
+}: {
+  budget: BudgetView;
+  keptReasons: readonly string[];
+}) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  return (
+    <>
+      <p className="group-figure">
+        {i18n.t("The same as with the levels in force:")}{" "}
+        <b className="mono">{formatLevel(budget.lexDb, locale)}</b>{" "}
+        <span className="mono">{formatUncertainty(budget.expandedDb, locale)}</span> dB LEX,8h.
+      </p>
+      <KeptReasons reasons={keptReasons} />
+    </>
+  );
+}
+
+/** Parts that the table names; those too small to matter stand together as the rest, null. */
+function budgetRows(
+  items: BudgetView["items"],
+): { of: Item | null; contributionDb: number; sharePct: number }[] {
+  const named = items.filter(({ sharePct }) => sharePct >= SMALL_SHARE_PCT);
+  const rest = items.filter(({ sharePct }) => sharePct < SMALL_SHARE_PCT);
+  const [only] = rest;
+  const rows = named.map((of) => ({ of, ...of }));
+  if (!only) return rows;
+  return [
+    ...rows,
+    {
+      of: rest.length === 1 ? only : null,
+      // Contributions add by their squares.
+      contributionDb: Math.hypot(...rest.map(({ contributionDb }) => contributionDb)),
+      sharePct: rest.reduce((sum, { sharePct }) => sum + sharePct, 0),
+    },
+  ];
+}
+
 /** A group's level with its uncertainty: the budget as a picture and a table, and what would narrow it most. */
 export function GroupBudget({
   of,
@@ -90,12 +143,7 @@ export function GroupBudget({
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  const kept = of.keptReasons.map((reason) => (
-    <p key={reason} className="group-kept">
-      <b>{i18n.t("Kept: {reason}.", { reason })}</b>{" "}
-      {i18n.t("The result no longer bears the standard’s name.")}
-    </p>
-  ));
+  const kept = <KeptReasons reasons={of.keptReasons} />;
   const { budget } = of;
   if (!budget)
     return (
@@ -110,10 +158,9 @@ export function GroupBudget({
     taskId === null || taskId === ""
       ? sourceWord(i18n, source)
       : i18n.t("{source}, {task}", { source: sourceWord(i18n, source), task: taskName(taskId) });
-  const shown = budget.items.filter(({ sharePct }) => sharePct >= SMALL_SHARE_PCT);
-  const restPct = budget.items
-    .filter(({ sharePct }) => sharePct < SMALL_SHARE_PCT)
-    .reduce((sum, { sharePct }) => sum + sharePct, 0);
+  const parts = budgetRows(budget.items);
+  const nameOf = (part: (typeof parts)[number]) =>
+    part.of ? labelOf(part.of) : i18n.t("the rest");
   const [dominant] = budget.items;
   const [best, ...more] = budget.narrowings.slice(0, MOST_NARROWINGS);
   const others = more.filter(({ decreaseDb }) => decreaseDb >= WORTH_NAMING_DB);
@@ -149,15 +196,29 @@ export function GroupBudget({
         </p>
       )}
       {kept}
+      {of.belowRangeCount > 0 && (
+        <p className="group-kept">
+          <b>
+            {i18n.t(
+              "{count, plural, one {# sample lies below its threshold and is taken at it} other {# samples lie below their threshold and are taken at it}}: the level is an upper estimate, and the scatter may be greater than stated.",
+              { count: of.belowRangeCount },
+            )}
+          </b>{" "}
+          {i18n.t("ISO 9612 has no rule for such samples.")}
+        </p>
+      )}
       <ShareBar
         kind="uncertainty"
         lead={i18n.t("Share of u²")}
-        shares={[
-          ...shown.map((item) => ({ label: labelOf(item), sharePct: item.sharePct })),
-          ...(restPct > 0 ? [{ label: i18n.t("the rest"), sharePct: restPct }] : []),
-        ]}
+        shares={parts.map((part) => ({ label: nameOf(part), sharePct: part.sharePct }))}
       />
-      {best ? (
+      {best && best.decreaseDb < WORTH_NAMING_DB ? (
+        <p className="group-kept">
+          {i18n.t("More measuring would gain little, at most {narrowing}.", {
+            narrowing: narrowed(best),
+          })}
+        </p>
+      ) : best ? (
         <p className="group-kept">
           {i18n.t("What would narrow it most:")} <b>{narrowed(best)}</b>.
           {others.length > 0 && ` ${i18n.t("Then:")} ${others.map(narrowed).join("; ")}.`}
@@ -165,32 +226,34 @@ export function GroupBudget({
       ) : (
         <p className="group-kept">{i18n.t("Nothing that can be measured would narrow it.")}</p>
       )}
-      <DataTable<Item>
-        caption={i18n.t("Uncertainty budget")}
-        rows={budget.items}
-        rowKey={({ source, taskId }) => `${source} ${taskId}`}
-        columns={[
-          {
-            id: "source",
-            head: i18n.t("Part"),
-            isRowHead: true,
-            cell: labelOf,
-          },
-          {
-            id: "contribution",
-            head: "c·u",
-            unit: "dB",
-            kind: "figure",
-            cell: ({ contributionDb }) => formatNumber(contributionDb, 2, locale),
-          },
-          {
-            id: "share",
-            head: i18n.t("Share of u²"),
-            kind: "figure",
-            cell: ({ sharePct }) => formatShare(sharePct, locale),
-          },
-        ]}
-      />
+      <div className="budget-table">
+        <DataTable<(typeof parts)[number]>
+          caption={i18n.t("Uncertainty budget")}
+          rows={parts}
+          rowKey={({ of: item }) => (item ? `${item.source} ${item.taskId}` : "rest")}
+          columns={[
+            {
+              id: "source",
+              head: i18n.t("Part"),
+              isRowHead: true,
+              cell: nameOf,
+            },
+            {
+              id: "contribution",
+              head: "c·u",
+              unit: "dB",
+              kind: "figure",
+              cell: ({ contributionDb }) => formatNumber(contributionDb, 2, locale),
+            },
+            {
+              id: "share",
+              head: i18n.t("Share of u²"),
+              kind: "figure",
+              cell: ({ sharePct }) => formatChance(sharePct, locale),
+            },
+          ]}
+        />
+      </div>
       <p className="table-foot">
         {i18n.t("u = {u} dB; U = 1.65 · u, one-sided 95 %. ISO 9612:2009, Annex C.", {
           u: formatNumber(budget.combinedDb, 2, locale),

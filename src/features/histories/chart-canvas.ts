@@ -1,14 +1,18 @@
 import uPlot from "uplot";
 import type { Envelope, HistoryChannel } from "../../../shared/schemas/history";
+import { type DoseLook, dosePlace, doseTicks } from "./dose-axis";
 import type { ClockChange, ClockTick } from "./history-clock";
 import type { Span } from "./history-span";
 
 /** Room beside the plot, the same in both charts and in the lanes beneath: levels at the left, names at the right. */
 export const LEFT_PX = 60;
 export const RIGHT_PX = 236;
+/** On a phone the names stand over the picture. */
+export const NARROW_RIGHT_PX = 14;
 const LEVELS_PX = 300;
 const DOSES_PX = 168;
 const LABEL_STEP_PX = 16;
+const MARK_PX = 22;
 
 type Colour = "paper" | "ink" | "ink-2" | "ink-3" | "rule" | "hair" | "v7" | "v6" | "v4";
 type Colours = Readonly<Record<Colour, string>>;
@@ -53,6 +57,8 @@ interface Label {
   text: string;
   colour: Colour;
   mark: "line" | "ticks" | "dashes" | null;
+  /** Of a line that is told by it. */
+  dash?: readonly number[];
   isStrong?: boolean;
 }
 
@@ -82,19 +88,24 @@ function shortened(ctx: CanvasRenderingContext2D, text: string, roomPx: number):
 function drawLabels(chart: uPlot, labels: readonly Label[], colours: Colours): void {
   const { ctx, bbox } = chart;
   const ratio = uPlot.pxRatio;
+  // There is no room for them on a phone.
+  if (ctx.canvas.width - bbox.left - bbox.width < (RIGHT_PX / 2) * ratio) return;
   ctx.save();
   ctx.textBaseline = "middle";
   ctx.textAlign = "left";
   const x = bbox.left + bbox.width + 8 * ratio;
-  for (const { y, text, colour, mark, isStrong } of spread(labels, bbox.height / ratio)) {
+  for (const { y, text, colour, mark, dash = [], isStrong } of spread(
+    labels,
+    bbox.height / ratio,
+  )) {
     const top = bbox.top + y * ratio;
     ctx.strokeStyle = colours[colour];
     ctx.lineWidth = (mark === "line" ? 2 : 1.4) * ratio;
-    ctx.setLineDash(mark === "dashes" ? [3 * ratio, 2 * ratio] : []);
+    ctx.setLineDash((mark === "dashes" ? [3, 2] : dash).map((px) => px * ratio));
     ctx.beginPath();
     if (mark === "line" || mark === "dashes") {
       ctx.moveTo(x, top);
-      ctx.lineTo(x + 12 * ratio, top);
+      ctx.lineTo(x + MARK_PX * ratio, top);
     } else if (mark === "ticks") {
       for (const shift of [2, 6, 10]) {
         ctx.moveTo(x + shift * ratio, top - 3 * ratio);
@@ -104,7 +115,7 @@ function drawLabels(chart: uPlot, labels: readonly Label[], colours: Colours): v
     ctx.stroke();
     ctx.font = `${isStrong ? "600 " : ""}${FONT.replace("12.5", String(12.5 * ratio))}`;
     ctx.fillStyle = colours.ink;
-    const from = x + (mark === null ? 0 : 18 * ratio);
+    const from = x + (mark === null ? 0 : (MARK_PX + 6) * ratio);
     ctx.fillText(shortened(ctx, text, ctx.canvas.width - from), from, top);
   }
   ctx.restore();
@@ -247,6 +258,8 @@ function scalers(chart: uPlot): [(value: number) => number, (value: number) => n
 /** What a chart shows besides its data; read anew at each drawing. */
 export interface ChartScene {
   span: Span;
+  /** Room at the right, for names. */
+  rightPx: number;
   ticks: readonly ClockTick[];
   leftOut: readonly Span[];
   changes: readonly (ClockChange & { text: string })[];
@@ -261,8 +274,7 @@ export interface LevelScene extends ChartScene {
 
 export interface DoseScene extends ChartScene {
   highPct: number;
-  stepPct: number;
-  lines: readonly { text: string; isStrong: boolean }[];
+  lines: readonly { text: string; isStrong: boolean; look: DoseLook }[];
   limitText: string;
   pctText: (pct: number) => string;
 }
@@ -418,7 +430,7 @@ export function createLevelChart(
     {
       width: widthPx,
       height: LEVELS_PX,
-      padding: [8, RIGHT_PX, 0, 0],
+      padding: [8, first.rightPx, 0, 0],
       legend: { show: false },
       cursor: cursorOptions(callbacks.onWhole),
       scales: {
@@ -514,25 +526,23 @@ export function createDoseChart(
   let colours = readColours(target);
   let drawn: DoseData | null = null;
   const heightPx = Math.max(DOSES_PX, 30 + LABEL_STEP_PX * (first.lines.length + 1));
-  const colourOf = (place: number): Colour => (["v6", "ink-2", "v4", "rule"] as const)[place % 4]!;
 
   function draw(chart: uPlot) {
     drawLeftOut(chart, scene.leftOut, colours);
-    if (scene.highPct >= 100) drawLimit(chart, 100, colours);
+    drawLimit(chart, dosePlace(100), colours);
     const last = Math.min(chart.valToIdx(scene.span.toS), chart.data[0].length - 1);
-    const labels = scene.lines.flatMap(({ text, isStrong }, place): Label[] => {
-      const dosePct = chart.data[place + 1]?.[last];
-      if (dosePct == null) return [];
-      const y = chart.valToPos(dosePct, "y");
-      return [{ y, text, colour: colourOf(place), mark: "line", isStrong }];
+    const labels = scene.lines.flatMap(({ text, isStrong, look }, index): Label[] => {
+      const place = chart.data[index + 1]?.[last];
+      if (place == null) return [];
+      const y = chart.valToPos(place, "y");
+      return [{ y, text, colour: look.colour, dash: look.dash, mark: "line", isStrong }];
     });
-    if (scene.highPct >= 100)
-      labels.push({
-        y: chart.valToPos(100, "y"),
-        text: scene.limitText,
-        colour: "ink",
-        mark: null,
-      });
+    labels.push({
+      y: chart.valToPos(dosePlace(100), "y"),
+      text: scene.limitText,
+      colour: "ink",
+      mark: null,
+    });
     drawLabels(chart, labels, colours);
   }
 
@@ -540,31 +550,32 @@ export function createDoseChart(
     {
       width: widthPx,
       height: heightPx,
-      padding: [8, RIGHT_PX, 0, 0],
+      padding: [8, first.rightPx, 0, 0],
       legend: { show: false },
       cursor: cursorOptions(callbacks.onWhole),
       scales: {
         x: { time: false, auto: false },
-        y: { auto: false, range: () => [0, scene.highPct] },
+        y: { auto: false, range: () => [0, dosePlace(scene.highPct)] },
       },
       axes: [
         xAxis(scene, () => colours, false),
-        yAxis(
-          () => colours,
-          () => {
-            const values: number[] = [];
-            for (let pct = 0; pct <= scene.highPct; pct += scene.stepPct) values.push(pct);
-            return values;
-          },
-          (pct) => scene.pctText(pct),
-        ),
+        {
+          ...yAxis(
+            () => colours,
+            () => doseTicks(scene.highPct).map(({ pct }) => dosePlace(pct)),
+            () => "",
+          ),
+          values: () =>
+            doseTicks(scene.highPct).map(({ pct, isNamed }) => (isNamed ? scene.pctText(pct) : "")),
+        },
       ],
       series: [
         {},
         ...first.lines.map(
-          (_, place): uPlot.Series => ({
+          ({ look }): uPlot.Series => ({
             scale: "y",
-            stroke: () => colours[colourOf(place)],
+            stroke: () => colours[look.colour],
+            dash: [...look.dash],
             width: 1.6,
             points: { show: false },
           }),
@@ -581,9 +592,12 @@ export function createDoseChart(
     show(next, data) {
       Object.assign(scene, next);
       if (data && data !== drawn)
-        chart.setData([[...data.endsS], ...data.dosesPct.map((doses) => [...doses])], false);
+        chart.setData(
+          [[...data.endsS], ...data.dosesPct.map((doses) => doses.map(dosePlace))],
+          false,
+        );
       drawn = data;
-      chart.setScale("y", { min: 0, max: scene.highPct });
+      chart.setScale("y", { min: 0, max: dosePlace(scene.highPct) });
       chart.setScale("x", { min: scene.span.fromS, max: scene.span.toS });
     },
     resize: (width) => chart.setSize({ width, height: heightPx }),
@@ -594,12 +608,4 @@ export function createDoseChart(
     point: (left) => chart.setCursor({ left, top: left < 0 ? -1 : 0 }, false),
     destroy: () => chart.destroy(),
   };
-}
-
-/** The axis of a dose: up to a round figure over the highest, with the limit always on it. */
-export function doseAxis(highestPct: number): { highPct: number; stepPct: number } {
-  const most = Math.max(highestPct, 100) * 1.06;
-  const steps = [25, 50, 100, 200, 250, 500, 1000, 2500, 5000, 10_000, 25_000, 100_000];
-  const stepPct = steps.find((step) => most / step <= 5) ?? 200_000;
-  return { highPct: most, stepPct };
 }

@@ -1,6 +1,5 @@
 import { useLingui } from "@lingui/react";
 import { useEffect, useMemo, useRef, useState } from "react";
-import { formatMinutes } from "../../../shared/format/duration";
 import type { HistoryView } from "../../../shared/schemas/history";
 import { Button } from "../../components/button";
 import { type DataColumn, DataTable } from "../../components/data-table";
@@ -21,7 +20,7 @@ import {
   type Placed,
   type StretchKind,
 } from "./history-stretches";
-import { rangeText, stretchName } from "./history-words";
+import { lengthText, stretchName } from "./history-words";
 import type { Drawing } from "./use-drawing";
 
 /** As long as a stretch is at first where nothing says how long. */
@@ -54,14 +53,23 @@ export function useStretchEditing({
     document.querySelector<HTMLElement>(`[data-bracket="${key}"]`)?.focus();
   });
 
-  function tell({ stoppedBy }: Placed) {
+  function tell({ stoppedBy, side }: Placed) {
+    if (!stoppedBy) {
+      setWord("");
+      return;
+    }
+    const { fromS, toS } = stoppedBy;
+    const seconds = toS - fromS < 120;
     setWord(
-      stoppedBy
-        ? i18n.t("It stops at {name}, {range}: two brackets never lie over each other.", {
+      side === "after"
+        ? i18n.t("{name} begins there, at {time}.", {
             name: nameOf(stoppedBy),
-            range: rangeText(clock, stoppedBy),
+            time: clockText(clock, fromS, seconds),
           })
-        : "",
+        : i18n.t("{name} ends there, at {time}.", {
+            name: nameOf(stoppedBy),
+            time: clockText(clock, toS, seconds),
+          }),
     );
   }
 
@@ -134,6 +142,7 @@ export function DrawingLanes({
   editing,
   taskNames,
   span,
+  rightPx,
 }: LaneProps & {
   history: HistoryView;
   clock: HistoryClock;
@@ -150,6 +159,9 @@ export function DrawingLanes({
       taskNames={taskNames}
       canChange={history.can.change === true && !history.isVoid}
       openKey={editing.open?.key ?? null}
+      pending={editing.open?.key === null ? editing.open : null}
+      word={editing.word}
+      rightPx={rightPx}
       onChange={editing.onChange}
       onOpen={editing.openOf}
       onRemove={editing.remove}
@@ -217,10 +229,9 @@ export function StretchList({
       {
         id: "minutes",
         head: i18n.t("Length"),
-        unit: "min",
         kind: "figure",
         hidesOnPhone: true,
-        cell: ({ fromS, toS }) => formatMinutes((toS - fromS) / 60, locale),
+        cell: ({ fromS, toS }) => lengthText(i18n, toS - fromS, locale),
       },
       ...(canChange
         ? [

@@ -43,6 +43,11 @@ export interface LanesProps {
   readonly taskNames: Readonly<Record<string, string>>;
   readonly canChange: boolean;
   readonly openKey: string | null;
+  /** A bracket whose form is open and that is not drawn yet. */
+  readonly pending: (Span & { readonly kind: StretchKind }) | null;
+  /** What just happened to a bracket, said elsewhere to those who hear it. */
+  readonly word: string;
+  readonly rightPx: number;
   /** `isDone`: the hand let go; until then it only shows where it would stand. */
   readonly onChange: (placed: Placed, isDone: boolean) => void;
   readonly onOpen: (key: string) => void;
@@ -58,6 +63,9 @@ export function HistoryLanes(props: LanesProps) {
     <div className="shift-lanes">
       <Lane {...props} kind="task" label={i18n.t("Tasks")} hintId={hintId} />
       <Lane {...props} kind="left-out" label={i18n.t("Left out")} hintId={hintId} />
+      <p className="shift-lane-word" aria-hidden="true">
+        {props.word}
+      </p>
       <p className="sr-only" id={hintId}>
         {props.canChange
           ? i18n.t(
@@ -77,6 +85,8 @@ function Lane({
   taskNames,
   canChange,
   openKey,
+  pending,
+  rightPx,
   onChange,
   onOpen,
   onRemove,
@@ -210,6 +220,8 @@ function Lane({
     .filter((one) => one.kind === kind && one.toS > span.fromS && one.fromS < span.toS)
     .toSorted((a, b) => a.fromS - b.fromS);
 
+  const ghost = draft ?? (pending?.kind === kind ? pending : null);
+
   return (
     <div className={`shift-lane is-${kind}`}>
       {/* biome-ignore lint/a11y/useSemanticElements: brackets are buttons, not fields */}
@@ -218,7 +230,7 @@ function Lane({
         ref={track}
         role="group"
         aria-label={label}
-        style={{ marginLeft: LEFT_PX, marginRight: RIGHT_PX }}
+        style={{ marginLeft: LEFT_PX, marginRight: rightPx }}
         onPointerDown={(event) => {
           if (event.target === track.current) takeHold(event, null, "draw");
         }}
@@ -248,9 +260,17 @@ function Lane({
             </Bracket>
           );
         })}
-        {draft && <span className={`bracket is-${kind} is-draft`} style={place(draft)} />}
+        {ghost && <span className={`bracket is-${kind} is-draft`} style={place(ghost)} />}
       </div>
-      <span className="shift-lane-name" style={{ width: RIGHT_PX - 8 }} aria-hidden="true">
+      <span
+        className="shift-lane-name"
+        style={
+          rightPx === RIGHT_PX
+            ? { width: rightPx - 8 }
+            : { left: 0, right: "auto", width: LEFT_PX - 4 }
+        }
+        aria-hidden="true"
+      >
         {label}
       </span>
     </div>

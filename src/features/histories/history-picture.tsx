@@ -26,12 +26,13 @@ import {
   createLevelChart,
   type DoseData,
   type DoseScene,
-  doseAxis,
   LEFT_PX,
   type LevelData,
   type LevelScene,
+  NARROW_RIGHT_PX,
   RIGHT_PX,
 } from "./chart-canvas";
+import { doseAxisTopPct, doseLook } from "./dose-axis";
 import { clockChanges, clockText, clockTicks } from "./history-clock";
 import { historyQueries } from "./history-queries";
 import {
@@ -46,8 +47,9 @@ import {
 import { changeText, clockOf, criterionText, doseText, rangeText } from "./history-words";
 import { CHANNEL_SYMBOL } from "./import-words";
 
-/** Narrower than this nothing can be read off: the picture then scrolls in its own window. */
+/** Narrower than this nothing can be read off: the picture then scrolls in its own window, its names standing over it. */
 const NARROWEST_PX = 720;
+const NARROWEST_WITHOUT_NAMES_PX = 560;
 const TICK_PX = 64;
 /** Looking about goes on for a while; only where it rests are finer levels asked for. */
 const REST_MS = 180;
@@ -113,6 +115,7 @@ function useRepaint(repaint: () => void): void {
 export interface LaneProps {
   readonly span: Span;
   readonly widthPx: number;
+  readonly rightPx: number;
 }
 
 /**
@@ -145,6 +148,8 @@ export function HistoryPicture({
   const [span, setSpan] = useState<Span>({ fromS: 0, toS: lengthS });
   const [shown, setShown] = useState(() => firstShown(history.channels));
   const [widthPx, setWidthPx] = useState(0);
+  const [isNarrow, setIsNarrow] = useState(false);
+  const [hiddenDoses, setHiddenDoses] = useState<ReadonlySet<string>>(new Set());
 
   const frame = useRef<HTMLDivElement>(null);
   const levelsAt = useRef<HTMLDivElement>(null);
@@ -156,7 +161,12 @@ export function HistoryPicture({
   useLayoutEffect(() => {
     const element = frame.current;
     if (!element || typeof ResizeObserver === "undefined") return;
-    const measure = () => setWidthPx(Math.max(NARROWEST_PX, Math.floor(element.clientWidth)));
+    const measure = () => {
+      const isTight = element.clientWidth < NARROWEST_PX;
+      const leastPx = isTight ? NARROWEST_WITHOUT_NAMES_PX : NARROWEST_PX;
+      setIsNarrow(isTight);
+      setWidthPx(Math.max(leastPx, Math.floor(element.clientWidth)));
+    };
     measure();
     const observer = new ResizeObserver(measure);
     observer.observe(element);
@@ -185,12 +195,13 @@ export function HistoryPicture({
     () => clockChanges(clock).map((change) => ({ ...change, text: changeText(i18n, change) })),
     [clock, i18n],
   );
-  const plotPx = Math.max(1, widthPx - LEFT_PX - RIGHT_PX);
+  const rightPx = isNarrow ? NARROW_RIGHT_PX : RIGHT_PX;
+  const plotPx = Math.max(1, widthPx - LEFT_PX - rightPx);
   const ticks = useMemo(
     () => clockTicks(clock, span, Math.floor(plotPx / TICK_PX)),
     [clock, span, plotPx],
   );
-  const scene = { span, ticks, leftOut, changes };
+  const scene = { span, ticks, leftOut, changes, rightPx };
 
   const meanDb = analysis?.counted.laeqDb ?? null;
   const levelScene: LevelScene = {
@@ -206,10 +217,18 @@ export function HistoryPicture({
           },
   };
 
-  const doses = analysis?.runningDose;
+  const allDoses = analysis?.runningDose;
+  // A line keeps its look, whichever others are shown.
+  const doses = useMemo(
+    () =>
+      (allDoses ?? [])
+        .map((dose, place) => ({ ...dose, look: doseLook(place), isMain: place === 0 }))
+        .filter((dose) => !hiddenDoses.has(doseKey(dose))),
+    [allDoses, hiddenDoses],
+  );
   const doseData = useMemo<DoseData | null>(() => {
-    const [first] = doses ?? [];
-    if (!doses || !first) return null;
+    const [first] = doses;
+    if (!first) return null;
     return {
       endsS: [0, ...first.dosePct.map((_, index) => (index + 1) * first.bucketS)],
       dosesPct: doses.map(({ dosePct }) => [0, ...dosePct]),
@@ -217,15 +236,16 @@ export function HistoryPicture({
   }, [doses]);
   const doseScene: DoseScene = {
     ...scene,
-    ...doseAxis(Math.max(0, ...(doses ?? []).map(({ dosePct }) => dosePct.at(-1) ?? 0))),
+    highPct: doseAxisTopPct(Math.max(0, ...doses.map(({ dosePct }) => dosePct.at(-1) ?? 0))),
     limitText: i18n.t("limit 100 %"),
     pctText: (pct) => formatShare(pct, locale),
-    lines: (doses ?? []).map((dose, place) => {
+    lines: doses.map((dose) => {
       const bucket = Math.floor((span.toS + 1e-6) / dose.bucketS) - 1;
       const sofar = dose.dosePct[Math.min(bucket, dose.dosePct.length - 1)] ?? 0;
       return {
         text: `${doseText(sofar, dose.bound, locale)} ${criterionText(i18n, dose, locale)}`,
-        isStrong: place === 0,
+        isStrong: dose.isMain,
+        look: dose.look,
       };
     }),
   };
@@ -248,7 +268,7 @@ export function HistoryPicture({
       const figure = high === low ? text(high) : `${text(low)}–${text(high)}`;
       return `${CHANNEL_SYMBOL[channel]} ${figure}`;
     });
-    const sofar = (doses ?? []).slice(0, 1).map((dose) => {
+    const sofar = doses.slice(0, 1).map((dose) => {
       const at = dose.dosePct[Math.floor(atS / dose.bucketS) - 1] ?? 0;
       return i18n.t("dose so far {dose}", { dose: doseText(at, dose.bound, locale) });
     });
@@ -291,9 +311,10 @@ export function HistoryPicture({
       chart.destroy();
       levelChart.current = null;
     };
-  }, [hasWidth, channelsKey]);
+  }, [hasWidth, channelsKey, rightPx]);
 
-  const linesCount = doseScene.lines.length;
+  const linesKey = doses.map(doseKey).join(" ");
+  const linesCount = doses.length;
   // biome-ignore lint/correctness/useExhaustiveDependencies: as above
   useLayoutEffect(() => {
     const target = dosesAt.current;
@@ -308,7 +329,7 @@ export function HistoryPicture({
       chart.destroy();
       doseChart.current = null;
     };
-  }, [hasWidth, linesCount]);
+  }, [hasWidth, linesKey, rightPx]);
 
   useLayoutEffect(() => {
     if (!hasWidth) return;
@@ -435,6 +456,55 @@ export function HistoryPicture({
           </Button>
         </div>
       </div>
+      {(allDoses?.length ?? 0) > 1 && (
+        // biome-ignore lint/a11y/useSemanticElements: as above
+        <div
+          className="shift-channels shift-dose-choice no-print"
+          role="group"
+          aria-label={i18n.t("Doses shown")}
+        >
+          {allDoses?.map((dose) => {
+            const key = doseKey(dose);
+            const isShown = !hiddenDoses.has(key);
+            return (
+              <label key={key} className="choice">
+                <input
+                  type="checkbox"
+                  checked={isShown}
+                  disabled={isShown && doses.length === 1}
+                  onChange={() =>
+                    setHiddenDoses((before) => {
+                      const next = new Set(before);
+                      if (!next.delete(key)) next.add(key);
+                      return next;
+                    })
+                  }
+                />
+                <span>{criterionText(i18n, dose, locale)}</span>
+              </label>
+            );
+          })}
+        </div>
+      )}
+      {isNarrow && (
+        <div className="shift-legend no-print" aria-hidden="true">
+          <ul>
+            {levelScene.mean && (
+              <li>
+                <LineSample dash={[3, 2]} />
+                <b>{levelScene.mean.text}</b>
+              </li>
+            )}
+            {doseScene.lines.map(({ text, isStrong, look }) => (
+              <li key={text}>
+                <LineSample dash={look.dash} colour={look.colour} />
+                {isStrong ? <b>{text}</b> : text}
+              </li>
+            ))}
+          </ul>
+          <p className="shift-hint">{i18n.t("Swipe the picture sideways for the rest of it.")}</p>
+        </div>
+      )}
       {/* biome-ignore lint/a11y/useSemanticElements: a section would be one more landmark */}
       <div
         className="shift-scroll"
@@ -447,7 +517,10 @@ export function HistoryPicture({
         )}
         onKeyDown={onKeyDown}
       >
-        <div className="shift-paper" style={{ minWidth: NARROWEST_PX }}>
+        <div
+          className="shift-paper"
+          style={{ minWidth: isNarrow ? NARROWEST_WITHOUT_NAMES_PX : NARROWEST_PX }}
+        >
           <div role="img" aria-label={summary}>
             <p className="shift-caption" aria-hidden="true">
               {i18n.t("Level")} <span className="unit">dB</span>
@@ -462,7 +535,7 @@ export function HistoryPicture({
               </>
             )}
           </div>
-          {hasWidth && lanes({ span, widthPx })}
+          {hasWidth && lanes({ span, widthPx, rightPx })}
         </div>
       </div>
       <div className="shift-foot">
@@ -483,5 +556,27 @@ export function HistoryPicture({
         {isAll ? "" : i18n.t("Seen: {range}", { range: rangeText(clock, span) })}
       </p>
     </div>
+  );
+}
+
+/** What tells one running dose from the others. */
+const doseKey = ({
+  label,
+  settings,
+}: Pick<HistoryAnalysis["runningDose"][number], "label" | "settings">) =>
+  `${label} ${settings.criterionLevelDb} ${settings.exchangeRateDb} ${settings.thresholdDb}`;
+
+function LineSample({ dash, colour = "ink" }: { dash: readonly number[]; colour?: string }) {
+  return (
+    <svg width="24" height="8" viewBox="0 0 24 8" aria-hidden="true">
+      <line
+        x2="24"
+        y1="4"
+        y2="4"
+        stroke={`var(--${colour})`}
+        strokeWidth="2"
+        strokeDasharray={dash.join(" ")}
+      />
+    </svg>
   );
 }

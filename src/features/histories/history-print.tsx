@@ -1,8 +1,10 @@
 import { useLingui } from "@lingui/react";
 import { memo } from "react";
+import { formatShare } from "../../../shared/format/dose";
 import { formatNumber } from "../../../shared/format/number";
 import type { Envelope, HistoryAnalysis, HistoryChannel } from "../../../shared/schemas/history";
 import { useLocale } from "../../lib/i18n";
+import { doseAxisTopPct, doseLook, dosePlace, doseTicks } from "./dose-axis";
 import { clockTicks, type HistoryClock } from "./history-clock";
 import type { Drawn } from "./history-stretches";
 import { criterionText, doseText, stretchName } from "./history-words";
@@ -10,13 +12,46 @@ import { CHANNEL_SYMBOL } from "./import-words";
 
 const WIDTH = 680;
 const LEFT = 34;
-const RIGHT = 140;
+const RIGHT = 176;
 const LEVELS = { top: 6, height: 190 };
-const DOSES = { top: 226, height: 90 };
-const LANES_TOP = 334;
+const DOSES = { top: 226, height: 104 };
+const LANES_TOP = 348;
+/** Of the print's letters, at 9 px: their mean width, and from line to line. */
+const LETTER = 4.6;
+const LINE = 11;
+/** Room of a name right of the picture, in letters. */
+const NAME_LETTERS = Math.floor((RIGHT - 8) / LETTER);
+const NAME_GAP = 6;
 
 /** Places on the paper, short enough for thousands of them. */
 const tenths = (place: number) => Math.round(place * 10) / 10;
+
+/** Names under their brackets in as many rows as it takes that none stands over another, none past the edge. */
+export function nameRows(
+  names: readonly { from: number; text: string }[],
+): { x: number; row: number }[] {
+  const ends: number[] = [];
+  return names.map(({ from, text }) => {
+    const width = text.length * LETTER;
+    const x = Math.max(0, Math.min(from, WIDTH - width));
+    const free = ends.findIndex((end) => end + NAME_GAP <= x);
+    const row = free === -1 ? ends.length : free;
+    ends[row] = x + width;
+    return { x, row };
+  });
+}
+
+/** A text in lines of so many letters, broken between words. */
+export function inLines(text: string, letters: number): string[] {
+  const lines: string[] = [];
+  for (const word of text.split(" ")) {
+    const last = lines.at(-1);
+    if (last !== undefined && last.length + 1 + word.length <= letters)
+      lines[lines.length - 1] = `${last} ${word}`;
+    else lines.push(word);
+  }
+  return lines;
+}
 
 /** The whole shift on paper: black lines that a printer draws sharp, whatever the screen shows. */
 export const HistoryPrint = memo(function HistoryPrint({
@@ -54,19 +89,52 @@ export const HistoryPrint = memo(function HistoryPrint({
       return `M${at} ${tenths(y(low / 100) + 0.5)}V${tenths(y(high / 100))}`;
     })
     .join("");
-  const mostPct = Math.max(105, ...analysis.runningDose.map(({ dosePct }) => dosePct.at(-1) ?? 0));
-  const doseY = (pct: number) => DOSES.top + DOSES.height * (1 - pct / mostPct);
+  const peakChannel = channels.find((one) => one === "lcpeak" || one === "lzpeak");
+  const peakPath = (peakChannel ? (envelope.channels[peakChannel]?.high ?? []) : [])
+    .map((high, index) =>
+      high === null
+        ? ""
+        : `M${tenths(x(envelope.fromS + (index + 0.5) * envelope.bucketS))} ${tenths(y(high / 100) - 0.8)}v1.6`,
+    )
+    .join("");
+  const topPct = doseAxisTopPct(
+    Math.max(0, ...analysis.runningDose.map(({ dosePct }) => dosePct.at(-1) ?? 0)),
+  );
+  const doseY = (pct: number) =>
+    DOSES.top + DOSES.height * (1 - dosePlace(pct) / dosePlace(topPct));
   const plotEnd = WIDTH - RIGHT;
-  let labelY = Number.NEGATIVE_INFINITY;
+  let freeY = Number.NEGATIVE_INFINITY;
   const ends = analysis.runningDose
-    .map((dose) => ({ dose, at: doseY(dose.dosePct.at(-1) ?? 0) }))
+    .map((dose, place) => ({ dose, place, at: doseY(dose.dosePct.at(-1) ?? 0) }))
     .toSorted((a, b) => a.at - b.at)
-    .map(({ dose, at }) => {
-      labelY = Math.max(at + 3, labelY + 11);
-      return { dose, labelY };
+    .map(({ dose, place, at }) => {
+      const text = `${doseText(dose.dosePct.at(-1) ?? null, dose.bound, locale)} ${criterionText(i18n, dose, locale)}`;
+      const lines = inLines(text, NAME_LETTERS - 5);
+      const top = Math.max(at + 3, freeY);
+      freeY = top + LINE * lines.length;
+      return { key: place, place, lines, top };
     });
+  const ofKind = (kind: Drawn["kind"]) =>
+    drawn.filter((one) => one.kind === kind).toSorted((a, b) => a.fromS - b.fromS);
+  const lane = (kind: Drawn["kind"]) => {
+    const stretches = ofKind(kind);
+    const names = stretches.map((one) =>
+      one.kind === "task"
+        ? stretchName(i18n, one, taskNames)
+        : i18n.t("Left out: {reason}", { reason: one.reason }),
+    );
+    const places = nameRows(
+      stretches.map((one, index) => ({ from: x(one.fromS), text: names[index]! })),
+    );
+    const rowCount = Math.max(0, ...places.map(({ row }) => row + 1));
+    return { stretches, names, places, height: rowCount === 0 ? 0 : 12 + LINE * rowCount };
+  };
+  const tasks = lane("task");
+  const leftOut = lane("left-out");
+  const leftOutTop = Math.max(LANES_TOP + tasks.height, freeY - LINE) + 6;
+  const height = leftOutTop + leftOut.height + 4;
   return (
-    <svg className="shift-print" viewBox={`0 0 ${WIDTH} ${LANES_TOP + 56}`} aria-hidden="true">
+    <svg className="shift-print" viewBox={`0 0 ${WIDTH} ${height}`} aria-hidden="true">
       <defs>
         <pattern
           id="left-out-lines"
@@ -87,9 +155,15 @@ export const HistoryPrint = memo(function HistoryPrint({
         </g>
       ))}
       <path className="trace" d={path} />
+      <path className="peaks" d={peakPath} />
       <text x={plotEnd + 6} y={LEVELS.top + 12}>
         {i18n.t("{channel}, dB", { channel: CHANNEL_SYMBOL[channel] })}
       </text>
+      {peakChannel && (
+        <text x={plotEnd + 6} y={LEVELS.top + 12 + LINE}>
+          {i18n.t("Points: {channel}, dB", { channel: CHANNEL_SYMBOL[peakChannel] })}
+        </text>
+      )}
       {clockTicks(clock, { fromS: 0, toS: lengthS }, 10).map(({ atS, text }) => (
         <g key={atS}>
           <line
@@ -104,45 +178,77 @@ export const HistoryPrint = memo(function HistoryPrint({
           </text>
         </g>
       ))}
-      <line className="limit" x1={LEFT} x2={plotEnd} y1={doseY(100)} y2={doseY(100)} />
-      <text x={LEFT - 4} y={doseY(100) + 3} textAnchor="end">
-        {doseText(100, "exact", locale)}
-      </text>
+      {doseTicks(topPct)
+        .filter(({ isNamed }) => isNamed)
+        .map(({ pct }) => (
+          <g key={pct}>
+            <line
+              className={pct === 100 ? "limit" : "guide"}
+              x1={LEFT}
+              x2={plotEnd}
+              y1={doseY(pct)}
+              y2={doseY(pct)}
+            />
+            <text x={LEFT - 4} y={doseY(pct) + 3} textAnchor="end">
+              {formatShare(pct, locale)}
+            </text>
+          </g>
+        ))}
       {analysis.runningDose.map((dose, place) => (
         <polyline
           // biome-ignore lint/suspicious/noArrayIndexKey: the order is the analysis's own
           key={place}
           className="trace"
+          strokeDasharray={doseLook(place).dash.join(" ")}
           points={[0, ...dose.dosePct]
             .map((pct, index) => `${tenths(x(index * dose.bucketS))},${tenths(doseY(pct))}`)
             .join(" ")}
         />
       ))}
-      {ends.map(({ dose, labelY: at }) => (
-        <text key={`${dose.label} ${JSON.stringify(dose.settings)}`} x={plotEnd + 6} y={at}>
-          {doseText(dose.dosePct.at(-1) ?? null, dose.bound, locale)}{" "}
-          {criterionText(i18n, dose, locale)}
-        </text>
+      {ends.map(({ key, place, lines, top }) => (
+        <g key={key}>
+          <line
+            className="trace"
+            strokeDasharray={doseLook(place).dash.join(" ")}
+            x1={plotEnd + 4}
+            x2={plotEnd + 24}
+            y1={top - 3}
+            y2={top - 3}
+          />
+          {lines.map((text, index) => (
+            <text key={text} x={plotEnd + 28} y={top + LINE * index}>
+              {text}
+            </text>
+          ))}
+        </g>
       ))}
-      {drawn.map((one) => {
-        const top = one.kind === "task" ? LANES_TOP : LANES_TOP + 28;
+      {tasks.stretches.map((one, index) => {
         const [from, to] = [x(one.fromS), x(one.toS)];
+        const { x: nameX, row } = tasks.places[index]!;
         return (
           <g key={one.key}>
-            {one.kind === "task" ? (
-              <path className="trace" d={`M${from} ${top}v6H${to}v-6`} />
-            ) : (
-              <rect
-                className="hatch"
-                x={from}
-                y={top}
-                width={Math.max(1, to - from)}
-                height={8}
-                fill="url(#left-out-lines)"
-              />
-            )}
-            <text x={from} y={top + 19}>
-              {stretchName(i18n, one, taskNames)}
+            <path className="trace" d={`M${from} ${LANES_TOP}v6H${to}v-6`} />
+            <text x={nameX} y={LANES_TOP + 17 + LINE * row}>
+              {tasks.names[index]}
+            </text>
+          </g>
+        );
+      })}
+      {leftOut.stretches.map((one, index) => {
+        const [from, to] = [x(one.fromS), x(one.toS)];
+        const { x: nameX, row } = leftOut.places[index]!;
+        return (
+          <g key={one.key}>
+            <rect
+              className="hatch"
+              x={from}
+              y={leftOutTop}
+              width={Math.max(1, to - from)}
+              height={8}
+              fill="url(#left-out-lines)"
+            />
+            <text x={nameX} y={leftOutTop + 18 + LINE * row}>
+              {leftOut.names[index]}
             </text>
           </g>
         );

@@ -75,6 +75,7 @@ export function StretchForm({
   onClose: () => void;
 }) {
   const { i18n } = useLingui();
+  const section = useRef<HTMLElement>(null);
   const head = useRef<HTMLHeadingElement>(null);
   const { fromS, toS } = stretch;
   const turnOf = (text: string, atS: number): "first" | "second" => {
@@ -86,6 +87,7 @@ export function StretchForm({
   const written = { from: editClock(clock, fromS), to: editClock(clock, toS) };
   const form = useSchemaForm(StretchFields, {
     mode: "onSubmit",
+    keepAs: `${fromS} ${toS}`,
     defaultValues: {
       kind: stretch.kind,
       taskId: stretch.taskId,
@@ -95,7 +97,11 @@ export function StretchForm({
       toTurn: turnOf(written.to, toS),
     },
   });
-  useEffect(() => head.current?.focus(), []);
+  useEffect(() => {
+    // No further than the form needs: what is being typed about stands right over it.
+    head.current?.focus({ preventScroll: true });
+    section.current?.scrollIntoView?.({ block: "nearest" });
+  }, []);
   const kind = form.watch("kind");
 
   const turns = (text: string): Choice[] | null => {
@@ -165,7 +171,7 @@ export function StretchForm({
   });
 
   return (
-    <section className="stretch-form">
+    <section className="stretch-form" ref={section}>
       <h2 tabIndex={-1} ref={head}>
         {stretch.key === null ? i18n.t("A new bracket") : i18n.t("This bracket")}
       </h2>

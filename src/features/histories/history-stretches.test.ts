@@ -62,6 +62,14 @@ describe("moving a bracket", () => {
   test("touching its neighbour it can't go further, but can go back", () => {
     const before = [task("a", 0, 2), task("b", 2, 4, welding)];
     expect(hoursOf(moveStretch(before, "b", -HOUR, lengthS).drawn, "b")).toEqual([2, 4]);
+    expect(moveStretch(before, "b", -HOUR, lengthS)).toMatchObject({
+      stoppedBy: { key: "a" },
+      side: "before",
+    });
+    expect(moveStretch(before, "a", HOUR, lengthS)).toMatchObject({
+      stoppedBy: { key: "b" },
+      side: "after",
+    });
     expect(hoursOf(moveStretch(before, "b", HOUR, lengthS).drawn, "b")).toEqual([3, 5]);
   });
 

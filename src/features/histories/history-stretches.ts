@@ -57,7 +57,13 @@ export interface Placed {
   readonly drawn: readonly Drawn[];
   /** What stopped it short; null where nothing did, or only an end of the history. */
   readonly stoppedBy: Drawn | null;
+  /** On which side of it that lies. */
+  readonly side?: "before" | "after";
 }
+
+/** The neighbour that a place was stopped by, with its side. */
+const stopped = (stoppedBy: Drawn | null, side: "before" | "after") =>
+  stoppedBy ? { stoppedBy, side } : { stoppedBy };
 
 const put = (drawn: readonly Drawn[], key: string, fromS: number, toS: number): Drawn[] =>
   drawn.map((one) => (one.key === key ? { ...one, fromS, toS } : one));
@@ -73,8 +79,9 @@ export function moveStretch(
   if (!one) return { drawn, stoppedBy: null };
   const { lowS, highS, before, after } = roomAround(ofKind(drawn, one.kind, key), one, lengthS);
   const moved = Math.min(Math.max(byS, lowS - one.fromS), highS - one.toS);
-  const stoppedBy = moved > byS ? before : moved < byS ? after : null;
-  return { drawn: put(drawn, key, one.fromS + moved, one.toS + moved), stoppedBy };
+  const side = moved > byS ? "before" : "after";
+  const met = stopped(moved === byS ? null : side === "before" ? before : after, side);
+  return { drawn: put(drawn, key, one.fromS + moved, one.toS + moved), ...met };
 }
 
 /** Brings one end of a stretch to a time, never past its other end, its own kind or the history. */
@@ -90,10 +97,16 @@ export function resizeStretch(
   const { lowS, highS, before, after } = roomAround(ofKind(drawn, one.kind, key), one, lengthS);
   if (edge === "from") {
     const fromS = Math.max(lowS, Math.min(atS, one.toS - shortestS));
-    return { drawn: put(drawn, key, fromS, one.toS), stoppedBy: atS < lowS ? before : null };
+    return {
+      drawn: put(drawn, key, fromS, one.toS),
+      ...stopped(atS < lowS ? before : null, "before"),
+    };
   }
   const toS = Math.min(highS, Math.max(atS, one.fromS + shortestS));
-  return { drawn: put(drawn, key, one.fromS, toS), stoppedBy: atS > highS ? after : null };
+  return {
+    drawn: put(drawn, key, one.fromS, toS),
+    ...stopped(atS > highS ? after : null, "after"),
+  };
 }
 
 /** The stretch that a drag from one time to another draws, cut where it meets its own kind; null where it starts in one. */

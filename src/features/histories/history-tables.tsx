@@ -3,13 +3,13 @@ import { type ReactNode, useEffect, useRef, useState } from "react";
 import { formatDose, formatShare } from "../../../shared/format/dose";
 import { formatMinutes } from "../../../shared/format/duration";
 import { formatLevel, formatLevelChange } from "../../../shared/format/level";
-import { formatNumber } from "../../../shared/format/number";
+import { formatNumber, MINUS } from "../../../shared/format/number";
 import type { HistoryAnalysis, HistoryView } from "../../../shared/schemas/history";
 import { type DataColumn, DataTable } from "../../components/data-table";
 import { Empty } from "../../components/empty";
 import { useLocale } from "../../lib/i18n";
 import type { HistoryClock } from "./history-clock";
-import { boundWord, criterionText, doseText, rangeText } from "./history-words";
+import { boundWord, criterionText, doseText, lengthText, rangeText } from "./history-words";
 
 interface TaskRow {
   readonly key: string;
@@ -23,7 +23,7 @@ interface TaskRow {
 }
 
 function taskRows(
-  { tasks, counted }: HistoryAnalysis,
+  { tasks, rest }: HistoryAnalysis,
   shift: HistoryView["tasks"],
   restName: string,
 ): TaskRow[] {
@@ -34,17 +34,8 @@ function taskRows(
     shiftMin: shift.find(({ id }) => id === task.taskId)?.durationMin ?? null,
     isRest: false,
   }));
-  const restS = counted.durationS - tasks.reduce((sum, { durationS }) => sum + durationS, 0);
-  if (tasks.length === 0 || restS < 0.5) return rows;
-  const shares = tasks.map(({ sharePct }) => sharePct);
-  // Bounds of parts do not add up to the bound of the whole.
-  const isExact = counted.readings[0]?.bound === "exact";
-  const sharePct =
-    isExact && shares.every((share) => share !== null)
-      ? Math.max(0, 100 - shares.reduce((sum, share) => sum + share, 0))
-      : null;
-  const rest = { laeqDb: null, dosePct: null, shiftMin: null, isRest: true };
-  return [...rows, { ...rest, key: "rest", name: restName, durationS: restS, sharePct }];
+  if (!rest || rest.durationS < 0.5) return rows;
+  return [...rows, { ...rest, key: "rest", name: restName, shiftMin: null, isRest: true }];
 }
 
 /** What each task took and gave. */
@@ -172,10 +163,12 @@ export function CompareTable({ analysis }: { analysis: HistoryAnalysis }) {
   const rows: CompareRow[] = [
     {
       id: "time",
-      name: i18n.t("Time, min"),
-      counted: formatMinutes(counted.durationS / 60, locale),
-      everything: formatMinutes(everything.durationS / 60, locale),
-      difference: formatNumber((counted.durationS - everything.durationS) / 60, 0, locale),
+      name: i18n.t("Time"),
+      counted: lengthText(i18n, counted.durationS, locale),
+      everything: lengthText(i18n, everything.durationS, locale),
+      difference: hasLeftOut
+        ? `${MINUS}${lengthText(i18n, everything.durationS - counted.durationS, locale)}`
+        : "–",
     },
     ...level("laeq", i18n.t("LAeq, dB"), counted.laeqDb, everything.laeqDb),
     ...doses,

@@ -1,7 +1,9 @@
 import type { I18n } from "@lingui/core";
 import type { MeterSettings } from "../../../shared/acoustics/types";
 import { formatDose } from "../../../shared/format/dose";
+import { formatDuration } from "../../../shared/format/duration";
 import { formatLimit } from "../../../shared/format/level";
+import { formatNumber } from "../../../shared/format/number";
 import type { Locale } from "../../../shared/i18n";
 import type { HistoryView } from "../../../shared/schemas/history";
 import { type ClockChange, clockText, type HistoryClock } from "./history-clock";
@@ -70,6 +72,15 @@ export function stretchName(
 ): string {
   if (one.kind === "left-out") return one.reason;
   return taskNames[one.taskId] ?? i18n.t("A task that is gone");
+}
+
+/** Under a quarter of an hour to the second, where it has any: "4 min 20 s". */
+export function lengthText(i18n: I18n, lengthS: number, locale: Locale): string {
+  const wholeS = Math.round(lengthS);
+  const [minutes, seconds] = [Math.floor(wholeS / 60), wholeS % 60];
+  if (wholeS < 60) return i18n.t("{seconds} s", { seconds: formatNumber(wholeS, 0, locale) });
+  if (wholeS >= 900 || seconds === 0) return formatDuration(lengthS / 60, locale);
+  return i18n.t("{minutes} min {seconds} s", { minutes, seconds });
 }
 
 export const rangeText = (

@@ -253,6 +253,11 @@ export function historyIssueText(
         "The worker’s shift lasts from {from} to {to}; the history goes on beyond it. Leave out what is another worker’s.",
         { from: at("startsAt"), to: at("endsAt") },
       );
+    case "outside-shift":
+      return i18n.t(
+        "The worker’s shift lasts from {from} to {to}; the history lies wholly outside it. Is it this worker’s, and the file’s clock right?",
+        { from: String(params.from), to: String(params.to) },
+      );
     case "in-the-future":
       return i18n.t("The history ends in the future, {at}. Look at the date and the clock.", {
         at: at("endsAt"),

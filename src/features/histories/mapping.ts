@@ -1,5 +1,10 @@
 import { readDate, readElapsed, readTime, readValue } from "../../../shared/history-file/cells";
-import type { HistoryChannel, HistoryHead, HistoryMapping } from "../../../shared/schemas/history";
+import type {
+  HistoryChannel,
+  HistoryHead,
+  HistoryMapping,
+  ProposedMapping,
+} from "../../../shared/schemas/history";
 
 /** What a column is: a part of the time, or levels of a kind. */
 export type ColumnRole = "" | "date-time" | "date" | "time" | "elapsed" | HistoryChannel;
@@ -25,7 +30,7 @@ export const columnCount = ({ lines }: Pick<HistoryHead, "lines">): number =>
   Math.max(1, ...lines.map(({ length }) => length));
 
 /** The draft that a proposal makes; without one every column is left alone. */
-export function draftOf(head: HistoryHead, mapping: HistoryMapping | null): MappingDraft {
+export function draftOf(head: HistoryHead, mapping: ProposedMapping | null): MappingDraft {
   const count = columnCount(head);
   const roles: ColumnRole[] = Array.from({ length: count }, () => "");
   const units: Unit[] = Array.from({ length: count }, () => "dB");

@@ -130,6 +130,11 @@ export function importIssueText(i18n: I18n, issue: ImportIssue): string {
       return i18n.t("The clock was set forward over this time: it never came.");
     case "time-twice":
       return i18n.t("The clock showed this time twice. Write first or second under which_hour.");
+    case "open-end-unconfirmed":
+      return i18n.t(
+        "The end of this shift, {time}, still lies ahead: write yes under open_end if it will end so.",
+        { time: params.time },
+      );
     case "whole-day-unconfirmed":
       return i18n.t("A shift of exactly 24 hours: write yes under whole_day if it was one.");
     case "shifts-overlap":

@@ -3,7 +3,15 @@ import type { OwnDay } from "./queries";
 
 export type OwnProtector = Pick<
   AssignmentView,
-  "id" | "use" | "useName" | "innerName" | "outerName" | "fromDate" | "toDate"
+  | "id"
+  | "use"
+  | "useName"
+  | "innerModelId"
+  | "innerName"
+  | "outerName"
+  | "size"
+  | "fromDate"
+  | "toDate"
 >;
 
 const isInForce = ({ fromDate, toDate }: OwnProtector, date: string) =>

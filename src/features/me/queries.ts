@@ -1,6 +1,7 @@
 import { queryOptions, useMutation, useQueryClient } from "@tanstack/react-query";
 import type { z } from "zod";
 import type { FindingPage } from "../../../shared/schemas/finding";
+import type { FitTestView, IssueView } from "../../../shared/schemas/fit";
 import type { HistoryPage, WorkerView } from "../../../shared/schemas/worker";
 import { api } from "../../lib/api";
 import { ownReply } from "../../lib/own-reply";
@@ -11,6 +12,8 @@ export type OwnFinding = z.infer<typeof FindingPage>["rows"][number];
 
 /** More than a worker has days in a year. */
 const A_YEAR_OF_DAYS = 400;
+/** More than one worker has of devices and their fits. */
+const MOST_FITS = 50;
 /** More than one worker has open at once. */
 const MOST_FINDINGS = 100;
 
@@ -33,6 +36,29 @@ export const ownQueries = {
         api.get("/findings", {
           query: { workerId, limit: MOST_FINDINGS },
           schema: ownReply<{ rows: OwnFinding[] }>("rows"),
+          signal,
+        }),
+      select: ({ rows }) => rows,
+    }),
+  /** What the latest fit tests found, and what was handed out and is out still. */
+  fits: (workerId: string) =>
+    queryOptions({
+      queryKey: ["me", workerId, "fits"],
+      queryFn: ({ signal }) =>
+        api.get("/fit-tests", {
+          query: { workerId, limit: MOST_FITS },
+          schema: ownReply<{ rows: FitTestView[] }>("rows"),
+          signal,
+        }),
+      select: ({ rows }) => rows,
+    }),
+  issues: (workerId: string) =>
+    queryOptions({
+      queryKey: ["me", workerId, "issues"],
+      queryFn: ({ signal }) =>
+        api.get("/issues", {
+          query: { workerId, state: "open", limit: MOST_FITS },
+          schema: ownReply<{ rows: IssueView[] }>("rows"),
           signal,
         }),
       select: ({ rows }) => rows,
@@ -60,5 +86,19 @@ export function useReportProblem(workerId: string) {
         schema: ownReply<{ id: string }>("id"),
       }),
     onSuccess: () => client.invalidateQueries({ queryKey: ownQueries.all }),
+  });
+}
+
+/** That a device was received, said by its wearer. */
+export function useAcknowledgeOwn(workerId: string) {
+  const client = useQueryClient();
+  return useMutation({
+    mutationFn: ({ id, revision }: Pick<IssueView, "id" | "revision">) =>
+      api.post(`/issues/${id}/acknowledge`, {
+        body: {},
+        schema: ownReply<{ id: string }>("id"),
+        ifMatch: String(revision),
+      }),
+    onSettled: () => client.invalidateQueries({ queryKey: ["me", workerId] }),
   });
 }

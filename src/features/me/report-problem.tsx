@@ -1,13 +1,16 @@
 import { useLingui } from "@lingui/react";
 import { type FormEvent, useId, useState } from "react";
 import { Button } from "../../components/button";
+import { FormProblem } from "../../components/form-problem";
 import { useChangeKey } from "../../lib/change-key";
+import { useTypedText } from "../../lib/keep-typed";
 import { useMoveFocus } from "../../lib/move-focus";
-import { problemText } from "../../lib/problem-text";
+import { tooManyText } from "../../lib/too-many";
 import { useReportProblem } from "./queries";
 
-/** The server wants as much. */
+/** The server wants as much, and takes no more. */
 const SHORTEST = 3;
+const LONGEST = 2000;
 
 /** A word to the safety officer; what is written stays until it has arrived. */
 export function ReportProblem({ workerId }: { workerId: string }) {
@@ -15,8 +18,8 @@ export function ReportProblem({ workerId }: { workerId: string }) {
   const id = useId();
   const report = useReportProblem(workerId);
   const { keyFor, forget } = useChangeKey();
-  const [isOpen, setIsOpen] = useState(false);
-  const [text, setText] = useState("");
+  const [text, setText] = useTypedText(`problem ${workerId}`);
+  const [isOpen, setIsOpen] = useState(text !== "");
   const [isTooShort, setIsTooShort] = useState(false);
   const [isSent, setIsSent] = useState(false);
   const [place, moveFocus] = useMoveFocus<HTMLDivElement>();
@@ -25,7 +28,7 @@ export function ReportProblem({ workerId }: { workerId: string }) {
     event.preventDefault();
     const said = text.trim();
     setIsTooShort(said.length < SHORTEST);
-    if (said.length < SHORTEST) {
+    if (said.length < SHORTEST || said.length > LONGEST) {
       document.getElementById(id)?.focus();
       return;
     }
@@ -43,6 +46,7 @@ export function ReportProblem({ workerId }: { workerId: string }) {
     );
   }
 
+  const fault = isTooShort ? i18n.t("Write it in a few words.") : tooManyText(i18n, text, LONGEST);
   return (
     <div ref={place} className="contents">
       {isOpen ? (
@@ -52,28 +56,21 @@ export function ReportProblem({ workerId }: { workerId: string }) {
             id={id}
             className="input"
             rows={5}
-            maxLength={2000}
-            // biome-ignore lint/a11y/noAutofocus: it was just asked for
-            autoFocus
             aria-required="true"
-            aria-invalid={isTooShort || undefined}
-            aria-describedby={isTooShort ? `${id}-error` : undefined}
+            aria-invalid={fault ? true : undefined}
+            aria-describedby={fault && `${id}-error`}
             value={text}
             onChange={(event) => {
               setText(event.target.value);
               setIsTooShort(false);
             }}
           />
-          {isTooShort && (
+          {fault && (
             <p className="field-error" id={`${id}-error`}>
-              {i18n.t("Write it in a few words.")}
+              {fault}
             </p>
           )}
-          {report.isError && (
-            <p className="field-error" role="alert">
-              {problemText(i18n, report.error)}
-            </p>
-          )}
+          <FormProblem error={report.error} />
           <Button type="submit" kind="primary" size="worker" isBusy={report.isPending}>
             {i18n.t("Send to the safety officer")}
           </Button>
@@ -95,6 +92,7 @@ export function ReportProblem({ workerId }: { workerId: string }) {
           onClick={() => {
             setIsOpen(true);
             setIsSent(false);
+            moveFocus("textarea");
           }}
         >
           {i18n.t("Report a problem")}

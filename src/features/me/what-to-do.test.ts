@@ -1,6 +1,8 @@
 import { describe, expect, test } from "vitest";
+import type { FitTestView } from "../../../shared/schemas/fit";
 import { testI18n } from "../../lib/test-i18n";
 import { lastShiftSentence } from "./last-shift";
+import { fitOfOwn, ownFitSentence } from "./own-fit";
 import { ownFrame } from "./own-frame";
 import type { OwnProtector } from "./own-protectors";
 import type { OwnDay, OwnFinding } from "./queries";
@@ -40,8 +42,10 @@ const protector = (facts: Partial<OwnProtector> = {}): OwnProtector => ({
   id: "fenmuff",
   use: "everywhere",
   useName: null,
+  innerModelId: "00000000-0000-4000-8000-0000000000f1",
   innerName: "Fenmuff",
   outerName: null,
+  size: null,
   fromDate: "2026-05-04",
   toDate: null,
   ...facts,
@@ -127,6 +131,17 @@ describe("what to do", () => {
     expect(say(day(), [protector()], [finding({ kind: "reading-missing" })])).toEqual(worn);
   });
 
+  test("a fit is told of what is worn, and not of what was only tried", () => {
+    const failed = finding({
+      kind: "fit-failed",
+      useKey: "00000000-0000-4000-8000-0000000000f1",
+      facts: { protector: "Fenmuff" },
+    });
+    expect(say(day(), [protector()], [failed])[0]).toMatch(/^Fenmuff does not fit you well enough/);
+    const tried = finding({ kind: "fit-failed", useKey: "another", facts: { protector: "Tern" } });
+    expect(say(day(), [protector()], [tried])).toEqual(["Wear your Fenmuff in noise."]);
+  });
+
   test("in noise with nothing assigned; without noise nothing is needed", () => {
     expect(say(day(), [], [finding({ kind: "no-protector" })])[0]).toMatch(
       /^You work in noise and have no protector yet\./,
@@ -171,4 +186,48 @@ test("a week’s mark is its loudest day; Monday begins a week", () => {
     { date: "2026-11-29", levelDb: 78 },
     { date: "2026-12-06", levelDb: 82 },
   ]);
+});
+
+describe("whether it fits, in a sentence", () => {
+  const testOf = (facts: Partial<FitTestView> = {}): FitTestView => ({
+    id: "00000000-0000-4000-8000-000000000011",
+    revision: 1,
+    siteId: "00000000-0000-4000-8000-000000000009",
+    workerId: "00000000-0000-4000-8000-000000000008",
+    workerName: "T. Bramhall",
+    employeeNumber: "3391",
+    modelId: "00000000-0000-4000-8000-0000000000f1",
+    modelName: "Fenmuff",
+    testedOn: "2026-10-12",
+    method: "psychophysical",
+    size: null,
+    facts: { leftDb: [25], rightDb: [], methodSdDb: 3, bands: null },
+    confidencePct: 84,
+    needDb: 20,
+    note: "",
+    leftDb: 22,
+    rightDb: null,
+    parDb: 22,
+    hasPassed: true,
+    activePassed: null,
+    outcome: "issued",
+    dueOn: null,
+    isVoid: false,
+    authorName: null,
+    can: { change: false },
+    ...facts,
+  });
+  const say = (tests: FitTestView[], of = protector()) =>
+    ownFitSentence(testI18n(), "en", fitOfOwn(tests, of));
+
+  test("the latest that stands counts, of the size that is worn", () => {
+    expect(say([])).toBe("Nobody has tested yet whether it fits you.");
+    expect(say([testOf()])).toBe("Fits you, tested on 12 October 2026.");
+    expect(say([testOf({ hasPassed: false }), testOf()])).toMatch(/^Does not fit you well enough/);
+    expect(say([testOf({ hasPassed: false, isVoid: true }), testOf()])).toMatch(/^Fits you/);
+    expect(say([testOf({ size: "S" })], protector({ size: "L" }))).toMatch(/^Nobody has tested/);
+    expect(say([testOf({ needDb: null, hasPassed: null })])).toBe(
+      "Tested on you on 12 October 2026.",
+    );
+  });
 });

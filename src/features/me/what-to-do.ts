@@ -29,7 +29,10 @@ const TOLD: ReadonlySet<FindingKind> = new Set<FindingKind>([
   ...ORDER_KINDS,
   "over-limit-outside",
   "time-not-accounted",
+  "fit-failed",
+  "fit-due",
 ]);
+const ABOUT_FIT: ReadonlySet<FindingKind> = new Set<FindingKind>(["fit-failed", "fit-due"]);
 /** What a worker can only wait for stands last. */
 const placeOf = (kind: FindingKind) =>
   ORDER_KINDS.includes(kind) ? ORDER_KINDS.indexOf(kind) : ORDER_KINDS.length;
@@ -41,10 +44,15 @@ const placeOf = (kind: FindingKind) =>
 function asked({ findings, protectors, lastDay }: Known): OwnFinding[] {
   const isAnswered = ({ kind, lastDate }: OwnFinding) =>
     ABOUT_PROTECTOR.has(kind) && protectors.some(({ fromDate }) => fromDate > lastDate);
+  // What was only tried, or is worn no longer, asks for nothing.
+  const isWorn = ({ kind, useKey }: OwnFinding) =>
+    !ABOUT_FIT.has(kind) || protectors.some(({ innerModelId }) => innerModelId === useKey);
   const hasNewRules = ({ rulesUntil }: OwnFinding) =>
     rulesUntil !== null && lastDay !== null && lastDay.date >= rulesUntil;
   return foldOrders(
-    findings.filter((one) => TOLD.has(one.kind) && !isAnswered(one) && !hasNewRules(one)),
+    findings.filter(
+      (one) => TOLD.has(one.kind) && !isAnswered(one) && isWorn(one) && !hasNewRules(one),
+    ),
   )
     .map(({ lead }) => lead)
     .filter(({ state }) => state !== "done")

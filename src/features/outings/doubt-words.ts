@@ -51,6 +51,18 @@ export function doubtSentence(i18n: I18n, code: string, params: Params, locale: 
           )
         : i18n.t("It ran for {duration}; the survey planned {least}.", values);
     }
+    case "field-check-missing":
+      return i18n.t("A field check is missing; ISO 9612 asks for one before and one after (12.2).");
+    case "outside-shift":
+      return i18n.t("It lies wholly outside the worker’s shift, {from} to {to}.", {
+        from: String(params.from),
+        to: String(params.to),
+      });
+    case "shorter-than-shift":
+      return i18n.t("It covers {covered} of a shift of {shift}.", {
+        covered: formatDuration(numberIn(params, "coveredMin"), locale),
+        shift: formatDuration(numberIn(params, "shiftMin"), locale),
+      });
     case "clipped":
       return i18n.t("It showed that it was overloaded.");
     case "under-range":

@@ -1,22 +1,31 @@
 import { useLingui } from "@lingui/react";
 import { useEffect, useId, useRef, useState } from "react";
-import { formatTime } from "../../../shared/format/date";
+import { formatDayMonth, formatTime } from "../../../shared/format/date";
+import { formatDuration } from "../../../shared/format/duration";
+import { localDate } from "../../../shared/time/zone";
 import { Button } from "../../components/button";
-import { TextButton } from "../../components/link";
+import { TextButton, TextLink } from "../../components/link";
 import type { Issue } from "../../lib/api";
 import { useLocale } from "../../lib/i18n";
+import { paths } from "../../paths";
 import { doubtSentence } from "./doubt-words";
+import type { Overlap } from "./overlap";
 
 /** What has to be answered before a row is sent, or what was in its way. */
 export type Ask =
   | { kind: "late"; backAt: string; expectedBackAt: string }
-  | { kind: "twice"; time: string; first: string; second: string }
+  | { kind: "long"; backAt: string; outForMin: number }
+  | { kind: "twice"; cell: "outTime" | "backTime"; time: string; first: string; second: string }
+  | ({ kind: "overlap" } & Overlap)
   | { kind: "doubts"; doubts: readonly Issue[]; canDiscard: boolean }
   | { kind: "undo" }
   | { kind: "met"; text: string }
   | { kind: "problem"; text: string };
 
 const LEAST_REASON = 3;
+
+const asksCovers = (doubts: readonly Issue[]) =>
+  doubts.some(({ code }) => code === "shorter-than-shift" || code === "outside-shift");
 
 /** A question beneath the row that it is about; the keys go on to it, and back when it is left. */
 export function OutingAsk({
@@ -25,6 +34,7 @@ export function OutingAsk({
   isBusy,
   onTwice,
   onWornUntil,
+  onCovers,
   onKeep,
   onDiscard,
   onUndo,
@@ -34,8 +44,9 @@ export function OutingAsk({
   ask: Ask;
   timeZone: string;
   isBusy: boolean;
-  onTwice: (instant: string) => void;
+  onTwice: (cell: "outTime" | "backTime", instant: string) => void;
   onWornUntil: (instant: string) => void;
+  onCovers: (covers: "projected" | "part") => void;
   onKeep: (reason: string) => void;
   onDiscard: (reason: string) => void;
   onUndo: (reason: string) => void;
@@ -46,7 +57,9 @@ export function OutingAsk({
   const locale = useLocale();
   const box = useRef<HTMLDivElement>(null);
   const titleId = useId();
-  const time = (instant: string) => formatTime(instant, timeZone);
+  const time = (at: string) => formatTime(at, timeZone);
+  const instant = (at: string) =>
+    `${formatDayMonth(localDate(new Date(at), timeZone), locale)}, ${time(at)}`;
   useEffect(() => {
     box.current?.querySelector<HTMLElement>("textarea, button")?.focus();
   }, []);
@@ -81,14 +94,30 @@ export function OutingAsk({
           </div>
         </>
       )}
+      {ask.kind === "long" && (
+        <>
+          <p id={titleId} className="outing-ask-title">
+            {i18n.t("That is {back}, {length} after it went out. Is it?", {
+              back: instant(ask.backAt),
+              length: formatDuration(ask.outForMin, locale),
+            })}
+          </p>
+          <div className="outing-ask-acts">
+            <Button onClick={() => onWornUntil(ask.backAt)}>
+              {i18n.t("Yes, until {time}", { time: time(ask.backAt) })}
+            </Button>
+            {leave}
+          </div>
+        </>
+      )}
       {ask.kind === "twice" && (
         <>
           <p id={titleId} className="outing-ask-title">
             {i18n.t("The clock was set back: {time} came twice. Which one?", { time: ask.time })}
           </p>
           <div className="outing-ask-acts">
-            <Button onClick={() => onTwice(ask.first)}>{i18n.t("The first")}</Button>
-            <Button onClick={() => onTwice(ask.second)}>{i18n.t("The second")}</Button>
+            <Button onClick={() => onTwice(ask.cell, ask.first)}>{i18n.t("The first")}</Button>
+            <Button onClick={() => onTwice(ask.cell, ask.second)}>{i18n.t("The second")}</Button>
             {leave}
           </div>
         </>
@@ -100,6 +129,19 @@ export function OutingAsk({
               <li key={code}>{doubtSentence(i18n, code, params, locale)}</li>
             ))}
           </ul>
+          {asksCovers(ask.doubts) && (
+            <div className="outing-ask-acts">
+              {i18n.t("What does it cover?")}
+              {!ask.doubts.some(({ code }) => code === "outside-shift") && (
+                <Button isBusy={isBusy} onClick={() => onCovers("projected")}>
+                  {i18n.t("A part; the rest was like it")}
+                </Button>
+              )}
+              <Button isBusy={isBusy} onClick={() => onCovers("part")}>
+                {i18n.t("A part; only evidence")}
+              </Button>
+            </div>
+          )}
           <WithReason
             label={i18n.t("Because")}
             note={i18n.t(
@@ -129,6 +171,26 @@ export function OutingAsk({
           >
             {leave}
           </WithReason>
+        </>
+      )}
+      {ask.kind === "overlap" && (
+        <>
+          <p id={titleId} className="outing-ask-title" role="alert">
+            {ask.to === null
+              ? i18n.t("The instrument has been out since {from}: there is another run.", {
+                  from: instant(ask.from),
+                })
+              : i18n.t("The instrument has another run from {from} to {to}.", {
+                  from: instant(ask.from),
+                  to: instant(ask.to),
+                })}
+          </p>
+          <div className="outing-ask-acts">
+            {ask.runId && (
+              <TextLink to={paths.run(ask.runId)}>{i18n.t("Look at that run")}</TextLink>
+            )}
+            {leave}
+          </div>
         </>
       )}
       {(ask.kind === "met" || ask.kind === "problem") && (

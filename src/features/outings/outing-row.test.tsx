@@ -23,6 +23,7 @@ const row = (overrides: Partial<Row> = {}): Row => ({
   kind: "dosimeter",
   class: "2",
   calibrationDueOn: "2027-03-01",
+  calibrationFailedOn: null,
   presets: [settings],
   reservedFor: null,
   run: null,
@@ -120,7 +121,7 @@ const wholeWorker = {
   openFindings: 0,
 };
 
-function show(shown: Row, canChange = true) {
+function show(shown: Row, canChange = true, isPast = false) {
   const onDone = vi.fn();
   const onShowAnew = vi.fn();
   const handle = createRef<OutingRowHandle>();
@@ -134,6 +135,7 @@ function show(shown: Row, canChange = true) {
               ref={handle}
               row={shown}
               date="2026-11-30"
+              isPast={isPast}
               timeZone="UTC"
               surveyId={null}
               canChange={canChange}
@@ -273,6 +275,114 @@ describe("a row in the morning", () => {
     expect(await screen.findByText("A worker, or a place.")).toBeVisible();
     expect(sent).toEqual([]);
   });
+});
+
+describe("what a run covers", () => {
+  const short = {
+    status: 422,
+    body: {
+      code: "invalid",
+      issues: [
+        {
+          path: ["keptReason"],
+          code: "shorter-than-shift",
+          params: { coveredMin: 55, shiftMin: 480 },
+        },
+      ],
+    },
+  };
+  const takeBack = async (answer: (typeof answers)[number]) => {
+    answers = [answer, { status: 200, body: run }];
+    const shown = show(row({ run: { ...out, expectedBackAt: null } as Row["run"] }));
+    shown.handle.current?.focus();
+    await waitFor(() => expect(screen.getByLabelText("Back")).toHaveFocus());
+    await shown.user.keyboard("06:55{Enter}{Enter}{Enter}{Enter}");
+    return shown;
+  };
+
+  test("is asked where it is clearly shorter than the shift", async () => {
+    const { user } = await takeBack(short);
+    expect(await screen.findByText("It covers 55 min of a shift of 8 h.")).toBeVisible();
+    await user.click(screen.getByRole("button", { name: "A part; the rest was like it" }));
+    await waitFor(() => expect(sent).toHaveLength(2));
+    expect(sent[0]!.body).toMatchObject({ covers: "shift" });
+    expect(sent[1]!.body).toMatchObject({ covers: "projected", keptReason: null });
+  });
+
+  test("outside the shift it is not projected to it", async () => {
+    const [issue] = short.body.issues;
+    const outside = { ...issue, code: "outside-shift", params: { from: "14:00", to: "22:00" } };
+    const { user } = await takeBack({
+      ...short,
+      body: { code: "invalid", issues: [outside] },
+    });
+    expect(
+      await screen.findByText("It lies wholly outside the worker’s shift, 14:00 to 22:00."),
+    ).toBeVisible();
+    expect(screen.queryByRole("button", { name: /the rest was like it/ })).toBeNull();
+    await user.click(screen.getByRole("button", { name: "A part; only evidence" }));
+    await waitFor(() => expect(sent[1]?.body).toMatchObject({ covers: "part" }));
+  });
+});
+
+test("a reason that was given is not sent with the row once it is sent anew", async () => {
+  const drifted = {
+    status: 422,
+    body: {
+      code: "invalid",
+      issues: [{ path: ["keptReason"], code: "field-check-drift", params: { driftDb: 0.8 } }],
+    },
+  };
+  answers = [drifted, { status: 503, body: { code: "unavailable", issues: [] } }];
+  const { user, handle } = show(row({ run: { ...out, expectedBackAt: null } as Row["run"] }));
+  handle.current?.focus();
+  await waitFor(() => expect(screen.getByLabelText("Back")).toHaveFocus());
+  await user.keyboard("14:06{Enter}113.2{Enter}{Enter}{Enter}");
+  await user.type(await screen.findByLabelText("Because"), "cover was open");
+  await user.click(screen.getByRole("button", { name: "Keep it, because…" }));
+  await waitFor(() => expect(sent[1]?.body).toMatchObject({ keptReason: "cover was open" }));
+  const check = screen.getByLabelText("Check after");
+  await user.clear(check);
+  await user.type(check, "113.9");
+  await user.click(screen.getByRole("button", { name: "Take back in" }));
+  await waitFor(() => expect(sent).toHaveLength(3));
+  expect(sent[2]!.body).toMatchObject({ checkAfterDb: 113.9, keptReason: null });
+});
+
+test("a time before it went out is the next day's, and is asked about", async () => {
+  const { user, handle } = show(row({ run: { ...out, expectedBackAt: null } as Row["run"] }));
+  handle.current?.focus();
+  await waitFor(() => expect(screen.getByLabelText("Back")).toHaveFocus());
+  await user.keyboard("05:00{Enter}{Enter}{Enter}{Enter}");
+  expect(
+    await screen.findByText("That is 1 Dec, 05:00, 23 h after it went out. Is it?"),
+  ).toBeVisible();
+  expect(sent).toEqual([]);
+});
+
+test("of a day gone by, out and back are one entry", async () => {
+  answers = [{ status: 201, body: run }];
+  const { user, onDone } = show(row(), true, true);
+  await user.type(screen.getByLabelText("Worker or place"), "4417");
+  await screen.findByRole("option", { name: /D. Tavernor/ });
+  await user.keyboard("{Enter}");
+  await waitFor(() => expect(screen.getByLabelText("Check before")).toHaveFocus());
+  await user.keyboard("114{Enter}06:05{Enter}14:10{Enter}113.9{Enter}91.2{Enter}{Enter}");
+  await waitFor(() => expect(onDone).toHaveBeenCalledWith("The run of D-0031 is recorded."));
+  expect(sent).toMatchObject([
+    {
+      path: "/api/outings",
+      body: {
+        outAt: "2026-11-30T06:05:00.000Z",
+        checkBeforeDb: 114,
+        back: {
+          backAt: "2026-11-30T14:10:00.000Z",
+          checkAfterDb: 113.9,
+          readings: [{ averageDb: 91.2 }],
+        },
+      },
+    },
+  ]);
 });
 
 test("who only reads has no field and no button", () => {

@@ -6,7 +6,14 @@ import { formatDayMonth, formatShortDate, formatTime } from "../../../shared/for
 import { formatLevel } from "../../../shared/format/level";
 import { parseNumber } from "../../../shared/format/number";
 import { issueText } from "../../../shared/problems/issue-text";
-import { isLateReturn, LAEQ_SETTINGS, type OutingRow as Row } from "../../../shared/schemas/outing";
+import {
+  isLateReturn,
+  LAEQ_SETTINGS,
+  LONG_OUTING_MIN,
+  type OutingReturn,
+  type OutingStart,
+  type OutingRow as Row,
+} from "../../../shared/schemas/outing";
 import { RunView } from "../../../shared/schemas/run";
 import { localDate } from "../../../shared/time/zone";
 import { Button } from "../../components/button";
@@ -29,6 +36,7 @@ import { searchWorkers } from "../../lib/references";
 import { settingsWords } from "../../lib/register-words";
 import { paths } from "../../paths";
 import { type Ask, OutingAsk } from "./outing-ask";
+import { overlapOf } from "./overlap";
 import { useEndOuting, useStartOuting, useUndoOuting } from "./queries";
 import {
   backInstant,
@@ -69,6 +77,7 @@ const cellOf = (name: string): Cell => name.replace("figures.", "figure") as Cel
 const CELL_OF_ISSUE: Readonly<Record<string, FieldName>> = {
   outAt: "outTime",
   backAt: "backTime",
+  "back.backAt": "backTime",
   workerId: "who",
   areaId: "who",
   checkBeforeDb: "checkBeforeDb",
@@ -81,9 +90,13 @@ export interface OutingRowHandle {
 }
 
 /** What was answered in a row on the way to being sent. */
+type Back = NonNullable<OutingStart["back"]>;
+
 interface Answers {
-  instant?: string;
+  outInstant?: string;
+  backInstant?: string;
   wasWornUntilThen?: boolean;
+  covers?: Back["covers"];
   keptReason?: string;
   discardReason?: string;
 }
@@ -92,6 +105,7 @@ interface Answers {
 export function OutingRow({
   row,
   date,
+  isPast,
   timeZone,
   surveyId,
   canChange,
@@ -102,6 +116,8 @@ export function OutingRow({
 }: {
   row: Row;
   date: string;
+  /** The page is of a day gone by: what went out that day has come back since. */
+  isPast: boolean;
   timeZone: string;
   surveyId: string | null;
   canChange: boolean;
@@ -122,11 +138,12 @@ export function OutingRow({
   const undo = useUndoOuting();
   const form = useSchemaForm(RowFields, {
     mode: "onSubmit",
+    keepAs: `${row.instrumentId} ${row.run?.id ?? date}`,
     defaultValues: emptyRow(row),
   });
   const { run } = row;
   const presets = presetsOf(row);
-  const phase = phaseOf(row);
+  const phase = phaseOf(row, isPast);
   const isBack = run !== null && !run.isOut && !goesOutAgain;
   const whoField = useController({ control: form.control, name: "who" });
   const isBusy = start.isPending || end.isPending || undo.isPending;
@@ -177,11 +194,21 @@ export function OutingRow({
   }
 
   /** The instant of a typed time; null where it has to be asked about or mended first. */
-  function readInstant(cell: "outTime" | "backTime", values: RowValues): string | null {
-    if (answers.current.instant) return answers.current.instant;
+  function readInstant(
+    cell: "outTime" | "backTime",
+    values: RowValues,
+    outAt: string | null,
+  ): string | null {
+    const answered = answers.current[cell === "outTime" ? "outInstant" : "backInstant"];
+    if (answered) return answered;
     const typed = values[cell];
     if (typed === null) {
-      form.setError(cell, { message: i18n.t("Enter stamps the present time.") });
+      form.setError(cell, {
+        message:
+          phase === "both"
+            ? i18n.t("Type the time of that day.")
+            : i18n.t("Enter stamps the present time."),
+      });
       go(cell);
       return null;
     }
@@ -189,9 +216,9 @@ export function OutingRow({
     const found: FoundInstant =
       cell === "outTime"
         ? outInstant(date, typed, timeZone)
-        : backInstant(run?.outAt ?? "", typed, timeZone);
+        : backInstant(outAt ?? "", typed, timeZone);
     if (found.kind === "one") return found.instant;
-    if (found.kind === "twice") setAsk({ ...found, time: typed });
+    if (found.kind === "twice") setAsk({ ...found, cell, time: typed });
     else {
       form.setError(cell, {
         message: i18n.t("The clock was set forward: this time never came that day."),
@@ -218,13 +245,14 @@ export function OutingRow({
     return null;
   }
 
-  function submit(more: Answers = {}) {
-    answers.current = { ...answers.current, ...more };
+  /** What was answered belongs to what was sent then: a row that is sent by itself is asked about anew. */
+  function submit(more: Answers | null = null) {
+    answers.current = more === null ? {} : { ...answers.current, ...more };
     return form.handleSubmit((values) => {
       if (isBusy) return;
       setAsk(null);
-      if (phase === "out") sendOut(values);
-      else sendBack(values);
+      if (phase === "back") sendBack(values);
+      else sendOut(values);
     })();
   }
 
@@ -235,9 +263,11 @@ export function OutingRow({
       go("who");
       return;
     }
-    const outAt = readInstant("outTime", values);
+    const outAt = readInstant("outTime", values, null);
     if (outAt === null) return;
-    const body = {
+    const back = phase === "both" ? readBack(values, outAt) : null;
+    if (phase === "both" && back === null) return;
+    const body: OutingStart = {
       instrumentId: row.instrumentId,
       workerId: kind === "worker" ? id : null,
       areaId: kind === "area" ? id : null,
@@ -246,51 +276,66 @@ export function OutingRow({
       outAt,
       checkBeforeDb: values.checkBeforeDb,
       keptReason: answers.current.keptReason ?? null,
+      // A place has no shift that its reading could cover.
+      back: back && kind === "area" ? { ...back, covers: "part" } : back,
     };
     start.mutate(
       { body, key: changeKey.keyFor(body) },
       {
         onSuccess: (saved) =>
           done(
-            i18n.t("{serial} is out with {name}.", {
-              serial: row.serialNumber,
-              name: saved.workerName ?? saved.areaName ?? "",
-            }),
+            saved.isOut
+              ? i18n.t("{serial} is out with {name}.", {
+                  serial: row.serialNumber,
+                  name: saved.workerName ?? saved.areaName ?? "",
+                })
+              : i18n.t("The run of {serial} is recorded.", { serial: row.serialNumber }),
           ),
         onError: show,
       },
     );
   }
 
-  function sendBack(values: RowValues) {
-    if (!run) return;
-    const backAt = readInstant("backTime", values);
-    if (backAt === null) return;
-    const { expectedBackAt } = run;
+  /** What a return says; null where something has to be asked about or mended first. */
+  function readBack(values: RowValues, outAt: string): Back | null {
+    const backAt = readInstant("backTime", values, outAt);
+    if (backAt === null) return null;
+    const outForMin = (Date.parse(backAt) - Date.parse(outAt)) / 60_000;
+    const isTyped = stamped.current?.time !== values.backTime;
+    if (isTyped && outForMin > LONG_OUTING_MIN && !answers.current.wasWornUntilThen) {
+      setAsk({ kind: "long", backAt, outForMin });
+      return null;
+    }
+    const expectedBackAt = run?.isOut ? run.expectedBackAt : null;
     if (
       expectedBackAt &&
       isLateReturn(backAt, expectedBackAt) &&
       !answers.current.wasWornUntilThen
     ) {
       setAsk({ kind: "late", backAt, expectedBackAt });
-      return;
+      return null;
     }
     const figures = readFigures(values.figures);
-    if (figures === null) return;
-    const { keptReason = null, discardReason = null } = answers.current;
-    const body = {
+    if (figures === null) return null;
+    return {
       backAt,
       checkAfterDb: values.checkAfterDb,
-      covers: values.covers,
+      covers: answers.current.covers ?? values.covers,
       readings: readingsOf(presets, figures, values.peakDb),
       doubts: [
         ...(values.isClipped ? (["clipped"] as const) : []),
         ...(values.isUnderRange ? (["under-range"] as const) : []),
       ],
-      keptReason,
-      discardReason,
+      keptReason: answers.current.keptReason ?? null,
       unusual: values.unusual?.trim() ? values.unusual : null,
     };
+  }
+
+  function sendBack(values: RowValues) {
+    if (!run) return;
+    const back = readBack(values, run.outAt ?? "");
+    if (back === null) return;
+    const body: OutingReturn = { ...back, discardReason: answers.current.discardReason ?? null };
     end.mutate(
       { runId: run.id, revision: run.revision, body, key: changeKey.keyFor(body) },
       {
@@ -348,6 +393,11 @@ export function OutingRow({
       });
       return;
     }
+    const overlap = overlapOf(error);
+    if (overlap) {
+      setAsk({ kind: "overlap", ...overlap });
+      return;
+    }
     const doubts = error.issues.filter(({ path }) => path === "keptReason");
     if (doubts.length > 0) {
       setAsk({ kind: "doubts", doubts, canDiscard: phase === "back" });
@@ -378,6 +428,18 @@ export function OutingRow({
           threshold: settings.thresholdDb ?? i18n.t("no threshold"),
         });
   };
+  const isTypedOut = phase !== "back" && !isBack && canChange;
+  const isTypedBack = canChange && (phase === "back" || (phase === "both" && !isBack));
+  const sendOutAct = (
+    <div className="outing-cell is-act">
+      <Button type="submit" isBusy={isBusy}>
+        {phase === "both" ? i18n.t("Record the run") : i18n.t("Send out")}
+      </Button>
+      {goesOutAgain && run && (
+        <TextButton onClick={() => setGoesOutAgain(false)}>{i18n.t("Leave it")}</TextButton>
+      )}
+    </div>
+  );
   return (
     <li className={`outing${run?.isOut ? " is-out" : ""}`}>
       <form
@@ -405,13 +467,17 @@ export function OutingRow({
         </div>
         <div className="outing-cell is-due">
           <span className="outing-label">{i18n.t("Calibration due")}</span>
-          <span className={isOverdue ? "is-fault" : undefined}>
-            {row.calibrationDueOn
-              ? formatShortDate(row.calibrationDueOn, locale)
-              : i18n.t("not known")}
+          <span className={isOverdue || row.calibrationFailedOn ? "is-fault" : undefined}>
+            {row.calibrationFailedOn
+              ? i18n.t("failed its calibration on {date}", {
+                  date: formatShortDate(row.calibrationFailedOn, locale),
+                })
+              : row.calibrationDueOn
+                ? formatShortDate(row.calibrationDueOn, locale)
+                : i18n.t("not known")}
           </span>
         </div>
-        {phase === "out" && !isBack && canChange ? (
+        {isTypedOut ? (
           <>
             <div className="outing-cell is-who">
               <ComboboxField
@@ -438,14 +504,7 @@ export function OutingRow({
             <div className="outing-cell">
               <TimeField form={form} name="outTime" label={i18n.t("Out")} />
             </div>
-            <div className="outing-cell is-act">
-              <Button type="submit" isBusy={isBusy}>
-                {i18n.t("Send out")}
-              </Button>
-              {goesOutAgain && run && (
-                <TextButton onClick={() => setGoesOutAgain(false)}>{i18n.t("Leave it")}</TextButton>
-              )}
-            </div>
+            {phase === "out" && sendOutAct}
           </>
         ) : (
           <>
@@ -464,7 +523,7 @@ export function OutingRow({
             </div>
           </>
         )}
-        {phase === "back" && canChange && (
+        {isTypedBack && (
           <>
             <div className="outing-cell">
               <TimeField form={form} name="backTime" label={i18n.t("Back")} />
@@ -486,14 +545,18 @@ export function OutingRow({
               ))}
               <NumberField form={form} name="peakDb" label={i18n.t("Peak, C")} />
             </div>
-            <div className="outing-cell is-act">
-              <Button type="submit" isBusy={isBusy}>
-                {i18n.t("Take back in")}
-              </Button>
-              <TextButton onClick={() => setAsk({ kind: "undo" })}>
-                {i18n.t("It never went out")}
-              </TextButton>
-            </div>
+            {phase === "both" ? (
+              sendOutAct
+            ) : (
+              <div className="outing-cell is-act">
+                <Button type="submit" isBusy={isBusy}>
+                  {i18n.t("Take back in")}
+                </Button>
+                <TextButton onClick={() => setAsk({ kind: "undo" })}>
+                  {i18n.t("It never went out")}
+                </TextButton>
+              </div>
+            )}
           </>
         )}
         {(isBack || (phase === "back" && !canChange)) && (
@@ -539,7 +602,7 @@ export function OutingRow({
             </div>
           </>
         )}
-        {phase === "back" && canChange && (
+        {isTypedBack && (
           <details className="outing-more">
             <summary>{i18n.t("More about this run")}</summary>
             <div className="outing-more-fields">
@@ -577,8 +640,11 @@ export function OutingRow({
           ask={ask}
           timeZone={timeZone}
           isBusy={isBusy}
-          onTwice={(instant) => void submit({ instant })}
-          onWornUntil={(instant) => void submit({ instant, wasWornUntilThen: true })}
+          onTwice={(cell, instant) =>
+            void submit(cell === "outTime" ? { outInstant: instant } : { backInstant: instant })
+          }
+          onWornUntil={(instant) => void submit({ backInstant: instant, wasWornUntilThen: true })}
+          onCovers={(covers) => void submit({ covers })}
           onKeep={(keptReason) => void submit({ keptReason })}
           onDiscard={(discardReason) => void submit({ discardReason })}
           onUndo={(reason) =>
@@ -603,7 +669,7 @@ export function OutingRow({
           onLeave={() => {
             answers.current = {};
             setAsk(null);
-            go(phase === "out" ? "outTime" : "checkAfterDb");
+            go(phase === "back" ? "checkAfterDb" : "outTime");
           }}
         />
       )}

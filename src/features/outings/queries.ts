@@ -9,10 +9,17 @@ import {
   type SampleInput,
 } from "../../../shared/schemas/outing";
 import { RunView } from "../../../shared/schemas/run";
-import { SurveyView } from "../../../shared/schemas/survey";
+import { SurveyDetail } from "../../../shared/schemas/survey";
 import { api } from "../../lib/api";
 
-const SurveyTasks = SurveyView.pick({ id: true, siteId: true, name: true, targets: true });
+const SurveyTasks = SurveyDetail.pick({
+  id: true,
+  siteId: true,
+  name: true,
+  strategy: true,
+  targets: true,
+  nominalDay: true,
+});
 
 export const outingQueries = {
   all: ["outings"] as const,

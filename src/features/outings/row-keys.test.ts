@@ -7,12 +7,13 @@ import {
   enterStep,
   findBySerial,
   outInstant,
+  type Phase,
   presentTime,
   readingsOf,
 } from "./row-keys";
 
 describe("Enter", () => {
-  const walk = (phase: "out" | "back", filled: readonly Cell[], presetsCount = 2) => {
+  const walk = (phase: Phase, filled: readonly Cell[], presetsCount = 2) => {
     const typed = new Set(filled);
     const steps: string[] = [];
     let cell = cellsOf(phase, presetsCount)[0] as Cell;
@@ -45,6 +46,18 @@ describe("Enter", () => {
       "checkAfterDb",
       "figure0",
       "figure1",
+      "peakDb",
+      "send",
+    ]);
+  });
+
+  test("of a day gone by takes no present time, and goes from worker to peak", () => {
+    expect(walk("both", [], 1)).toEqual([
+      "checkBeforeDb",
+      "outTime",
+      "backTime",
+      "checkAfterDb",
+      "figure0",
       "peakDb",
       "send",
     ]);

@@ -11,15 +11,18 @@ export type Cell =
   | `figure${number}`
   | "peakDb";
 
-/** In the morning an instrument goes out, in the evening it comes back. */
-export type Phase = "out" | "back";
+/** In the morning an instrument goes out, in the evening it comes back; of a day gone by both are typed at once. */
+export type Phase = "out" | "back" | "both";
 
-export const phaseOf = ({ run }: Pick<OutingRow, "run">): Phase => (run?.isOut ? "back" : "out");
+export const phaseOf = ({ run }: Pick<OutingRow, "run">, isPast: boolean): Phase =>
+  run?.isOut ? "back" : isPast ? "both" : "out";
 
 export function cellsOf(phase: Phase, presetsCount: number): Cell[] {
-  if (phase === "out") return ["who", "checkBeforeDb", "outTime"];
+  const out: Cell[] = ["who", "checkBeforeDb", "outTime"];
+  if (phase === "out") return out;
   const figures = Array.from({ length: presetsCount }, (_, index): Cell => `figure${index}`);
-  return ["backTime", "checkAfterDb", ...figures, "peakDb"];
+  const back: Cell[] = ["backTime", "checkAfterDb", ...figures, "peakDb"];
+  return phase === "back" ? back : [...out, ...back];
 }
 
 export type EnterStep =
@@ -29,13 +32,15 @@ export type EnterStep =
 
 /**
  * What Enter does in a cell: an empty time cell takes the present time, any other goes on to the next, and from the last
- * the row is sent. In the morning the time is the last, so that stamping sends.
+ * the row is sent. In the morning the time is the last, so that stamping sends. No time of a day gone by is the present
+ * one.
  */
 export function enterStep(
   cell: Cell,
   { phase, presetsCount, isEmpty }: { phase: Phase; presetsCount: number; isEmpty: boolean },
 ): EnterStep {
-  if ((cell === "outTime" || cell === "backTime") && isEmpty) return { kind: "stamp", cell };
+  if (phase !== "both" && (cell === "outTime" || cell === "backTime") && isEmpty)
+    return { kind: "stamp", cell };
   const cells = cellsOf(phase, presetsCount);
   const next = cells[cells.indexOf(cell) + 1];
   return next ? { kind: "go", to: next } : { kind: "send" };

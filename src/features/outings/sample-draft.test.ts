@@ -5,8 +5,15 @@ import {
   nextOf,
   type SampleDraft,
   timerText,
+  toSend,
 } from "./sample-draft";
-import { emptySample, SampleFields, startOf, toSampleInput } from "./sample-fields";
+import {
+  emptySample,
+  SampleFields,
+  type SampleValues,
+  startOf,
+  toSampleInput,
+} from "./sample-fields";
 
 const id = "00000000-0000-4000-8000-000000000001";
 const values = {
@@ -70,6 +77,7 @@ test("is sent under the site's date, with what the instrument showed as doubts",
       surveyId: null,
       timeZone: "Europe/Berlin",
       fileIds: [],
+      isDoubtful: true,
     },
   );
   expect(sent).toMatchObject({
@@ -80,8 +88,66 @@ test("is sent under the site's date, with what the instrument showed as doubts",
   });
 });
 
-test("a sample of which only the length was typed ended just now", () => {
-  expect(startOf(6, new Date("2026-12-01T08:06:00Z"))).toBe("2026-12-01T08:00:00.000Z");
+describe("when a sample began", () => {
+  const now = new Date("2026-12-01T08:06:00Z");
+  const at = (given: Partial<SampleValues>) =>
+    startOf({ ...values, ...given }, now, "Europe/Berlin");
+
+  test("of which only the length was typed: it ended just now", () => {
+    expect(at({})).toEqual({ kind: "at", instant: "2026-12-01T08:00:00.000Z" });
+    expect(at({ durationMin: null })).toBeNull();
+  });
+
+  test("by its timer, however long ago that was", () => {
+    expect(at({ startedAt: "2026-12-01T07:30:00.000Z" })).toEqual({
+      kind: "at",
+      instant: "2026-12-01T07:30:00.000Z",
+    });
+  });
+
+  test("as typed in from the field sheet, by the clock of the site", () => {
+    const typed = { takenOn: "2026-11-27", takenFrom: "14:20" };
+    expect(at({ ...typed, startedAt: "2026-12-01T07:30:00.000Z" })).toEqual({
+      kind: "at",
+      instant: "2026-11-27T13:20:00.000Z",
+    });
+    // In Berlin the clock showed 02:30 twice on 25 October 2026.
+    expect(at({ takenOn: "2026-10-25", takenFrom: "02:30" })).toEqual({
+      kind: "twice",
+    });
+  });
+});
+
+describe("what is sent", () => {
+  const context = {
+    startedAt: "2026-12-01T08:00:00.000Z",
+    surveyId: null,
+    timeZone: "UTC",
+    fileIds: [],
+  };
+  const typed = { ...values, keptReason: "the whole task takes two minutes" };
+
+  test("leaves a reason out that outlived its doubt", () => {
+    expect(toSampleInput(typed, { ...context, isDoubtful: true }).keptReason).toBe(
+      "the whole task takes two minutes",
+    );
+    expect(toSampleInput(typed, { ...context, isDoubtful: false }).keptReason).toBeNull();
+  });
+
+  test("is the same sample when it was lost on the way, and another one once it was refused", () => {
+    let count = 0;
+    const newKey = () => `key ${++count}`;
+    const body = toSampleInput(values, { ...context, isDoubtful: false });
+    const first = toSend(body, true, null, newKey);
+    const later = { ...body, startedAt: "2026-12-01T08:02:00.000Z" };
+    expect(toSend(later, true, first.pending, newKey)).toEqual(first);
+    // Its start was not derived: the later time was meant.
+    expect(toSend(later, false, first.pending, newKey).body).toEqual(later);
+    expect(toSend(later, true, null, newKey)).toMatchObject({ body: later });
+    expect(toSend({ ...later, levelDb: 90 }, true, first.pending, newKey).body).toMatchObject({
+      startedAt: "2026-12-01T08:02:00.000Z",
+    });
+  });
 });
 
 test("the next sample keeps task, instrument and place, and no figure", () => {

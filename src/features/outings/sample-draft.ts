@@ -1,4 +1,4 @@
-import type { FileView } from "../../../shared/schemas/outing";
+import type { FileView, SampleInput } from "../../../shared/schemas/outing";
 import type { SampleValues } from "./sample-fields";
 
 /** A sample that is being taken: kept on the phone, so that a reload, a call or an empty battery loses nothing. */
@@ -61,6 +61,26 @@ export function timerText(seconds: number): string {
   return `${two(Math.floor(seconds / 60))}:${two(seconds % 60)}`;
 }
 
+/**
+ * What is sent, and under which key. A start that follows from the length alone moves on with the clock: sent again after
+ * a lost connection, it is still the sample that was sent first.
+ */
+export function toSend(
+  body: SampleInput,
+  isStartDerived: boolean,
+  pending: SampleDraft["pending"],
+  newKey: () => string,
+): { body: SampleInput; pending: NonNullable<SampleDraft["pending"]> } {
+  if (pending) {
+    const before = JSON.parse(pending.body) as SampleInput;
+    const again = isStartDerived
+      ? { ...body, startedAt: before.startedAt, date: before.date }
+      : body;
+    if (JSON.stringify(again) === pending.body) return { body: again, pending };
+  }
+  return { body, pending: { key: newKey(), body: JSON.stringify(body) } };
+}
+
 /** What stays for the next sample of the same task. */
 export function nextOf(values: SampleValues): SampleValues {
   return {
@@ -68,6 +88,7 @@ export function nextOf(values: SampleValues): SampleValues {
     levelDb: null,
     durationMin: null,
     startedAt: null,
+    takenFrom: null,
     lceqDb: null,
     lasMaxDb: null,
     peakDb: null,

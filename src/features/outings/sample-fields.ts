@@ -2,7 +2,7 @@ import { z } from "zod";
 import { LevelDb } from "../../../shared/schemas/common";
 import { OctaveBands } from "../../../shared/schemas/evaluation";
 import type { SampleInput } from "../../../shared/schemas/outing";
-import { localDate } from "../../../shared/time/zone";
+import { atLocalTime, localDate } from "../../../shared/time/zone";
 
 const level = z.number().min(20).max(180).nullable();
 const check = z.number().min(70).max(130).nullable();
@@ -15,8 +15,11 @@ export const SampleFields = z
     instrumentId: needed(z.uuid()),
     workerId: z.uuid().nullable(),
     place: z.string().nullable(),
-    /** ISO instant; null: as long ago as it lasted. */
+    /** ISO instant at which the timer was started; null: as long ago as it lasted. */
     startedAt: z.string().nullable(),
+    /** Day and time of day at the site, of a sample that is typed in later. */
+    takenOn: z.string().nullable(),
+    takenFrom: z.string().nullable(),
     durationMin: needed(z.number().positive().max(1440)),
     levelDb: needed(LevelDb),
     lceqDb: level,
@@ -39,6 +42,13 @@ export const SampleFields = z
           path: [name],
           params: { code: "required" },
         });
+    if (context.value.takenOn !== null && context.value.takenFrom === null)
+      context.issues.push({
+        code: "custom",
+        input: context.value,
+        path: ["takenFrom"],
+        params: { code: "required" },
+      });
   });
 export type SampleValues = z.infer<typeof SampleFields>;
 
@@ -48,6 +58,8 @@ export const emptySample: SampleValues = {
   workerId: null,
   place: null,
   startedAt: null,
+  takenOn: null,
+  takenFrom: null,
   durationMin: null,
   levelDb: null,
   lceqDb: null,
@@ -73,9 +85,17 @@ export function toSampleInput(
     surveyId,
     timeZone,
     fileIds,
-  }: { startedAt: string; surveyId: string | null; timeZone: string; fileIds: readonly string[] },
+    isDoubtful,
+  }: {
+    startedAt: string;
+    surveyId: string | null;
+    timeZone: string;
+    fileIds: readonly string[];
+    /** Something speaks against it: a reason that outlived its doubt is not sent. */
+    isDoubtful: boolean;
+  },
 ): SampleInput {
-  const { isClipped, isUnderRange, peakDb, ...rest } = values;
+  const { isClipped, isUnderRange, peakDb, takenOn: _, takenFrom: __, ...rest } = values;
   return {
     ...rest,
     surveyId,
@@ -84,7 +104,7 @@ export function toSampleInput(
     durationMin: values.durationMin as number,
     levelDb: values.levelDb as number,
     place: orNull(values.place),
-    keptReason: orNull(values.keptReason),
+    keptReason: isDoubtful ? orNull(values.keptReason) : null,
     unusual: orNull(values.unusual),
     startedAt,
     date: localDate(new Date(startedAt), timeZone),
@@ -97,6 +117,36 @@ export function toSampleInput(
   };
 }
 
-/** A sample of which only the length was typed ended just now. */
-export const startOf = (durationMin: number, now: Date): string =>
-  new Date(now.getTime() - durationMin * 60_000).toISOString();
+/**
+ * When a sample began: as typed, by its timer, or as long ago as it lasted. Null where nothing says; a clock that was set
+ * while it ran is named.
+ */
+export function startOf(
+  { takenOn, takenFrom, startedAt, durationMin }: SampleStart,
+  now: Date,
+  timeZone: string,
+): { kind: "at"; instant: string } | { kind: "twice" | "skipped" } | null {
+  if (typeof takenFrom === "string") {
+    const date = typeof takenOn === "string" ? takenOn : localDate(now, timeZone);
+    const found = atLocalTime(date, takenFrom, timeZone);
+    return found.kind === "one"
+      ? { kind: "at", instant: found.instant.toISOString() }
+      : { kind: found.kind };
+  }
+  if (startedAt !== null) return { kind: "at", instant: startedAt };
+  if (typeof durationMin !== "number") return null;
+  return {
+    kind: "at",
+    instant: new Date(now.getTime() - durationMin * 60_000).toISOString(),
+  };
+}
+type SampleStart = Pick<SampleValues, "startedAt"> &
+  Record<"takenOn" | "takenFrom" | "durationMin", unknown>;
+
+/** Something was measured that is not saved yet. */
+export const hasFigures = ({
+  levelDb,
+  durationMin,
+  startedAt,
+}: Pick<SampleValues, "levelDb" | "durationMin" | "startedAt">): boolean =>
+  [levelDb, durationMin, startedAt].some((value) => value !== null);

@@ -44,6 +44,7 @@ export function ProtectorHeadForm({
   const saving = useRevisedSave<Input, Detail>({
     path: () => `/protectors/${protector.id}`,
     schema: ProtectorDetail,
+    toBody,
     onSaved: take,
     onError: showIssuesOn(form, i18n),
   });

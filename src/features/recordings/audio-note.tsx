@@ -17,7 +17,7 @@ import { TextButton } from "../../components/link";
 import { apiAddress } from "../../lib/api";
 import { useLocale } from "../../lib/i18n";
 import { useDeleteAudio, useKeepAudio } from "./queries";
-import { showRecordingIssuesOn } from "./recording-text";
+import { showRecordingIssuesOn } from "./recording-issues";
 
 /** Where a recording's sound is: gone, on its way, or kept, with why and until when. */
 export function AudioNote({ view, onKeep }: { view: RecordingView; onKeep: () => void }) {

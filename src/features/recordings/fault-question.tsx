@@ -1,4 +1,5 @@
 import { useLingui } from "@lingui/react";
+import { recordingText } from "../../../shared/recordings/recording-text";
 import {
   isAcceptable,
   RecordingFaults,
@@ -13,7 +14,7 @@ import {
 } from "../../components/form";
 import { FormProblem } from "../../components/form-problem";
 import { useAcceptFaults } from "./queries";
-import { recordingText, showRecordingIssuesOn } from "./recording-text";
+import { showRecordingIssuesOn } from "./recording-issues";
 
 /** What a recording's fault is, and the reason for which it is used all the same. */
 export function FaultQuestion({ view }: { view: RecordingView }) {

@@ -4,6 +4,7 @@ import { z } from "zod";
 import { formatLevel } from "../../../shared/format/level";
 import { formatNumber } from "../../../shared/format/number";
 import { issueText } from "../../../shared/problems/issue-text";
+import { recordingText } from "../../../shared/recordings/recording-text";
 import { IsoDate } from "../../../shared/schemas/common";
 import {
   type CalibrationTone,
@@ -31,7 +32,7 @@ import { Status } from "../../components/status";
 import { ApiError } from "../../lib/api";
 import { useLocale } from "../../lib/i18n";
 import { type NewRecording, useMeasureTone, useSendRecording } from "./queries";
-import { recordingText, showRecordingIssuesOn } from "./recording-text";
+import { showRecordingIssuesOn } from "./recording-issues";
 import { fullScaleSineDb, megabytes, toneText } from "./recording-words";
 
 const Fields = z

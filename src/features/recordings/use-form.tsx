@@ -17,7 +17,7 @@ import { LookActions, ReviewedChange, useReviewedChange } from "../../components
 import { useLocale } from "../../lib/i18n";
 import { instrumentClassWord } from "../../lib/register-words";
 import { recordingQueries } from "./queries";
-import { showRecordingIssuesOn } from "./recording-text";
+import { showRecordingIssuesOn } from "./recording-issues";
 
 type Own = { readonly levelDb: number; readonly isLaeq: boolean } | null;
 

@@ -2,6 +2,7 @@ import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { useFieldArray } from "react-hook-form";
 import type { z } from "zod";
+import { formatInstant } from "../../../shared/format/date";
 import { formatShare } from "../../../shared/format/dose";
 import { formatDuration } from "../../../shared/format/duration";
 import { formatLimit } from "../../../shared/format/level";
@@ -23,6 +24,7 @@ import {
 } from "../../components/form";
 import { FormProblem } from "../../components/form-problem";
 import { TextButton } from "../../components/link";
+import { isEndAhead } from "../../lib/end-ahead";
 import { useLocale } from "../../lib/i18n";
 import { references } from "../../lib/references";
 import { useRevisedSave } from "../../lib/revised-save";
@@ -46,6 +48,7 @@ const bodyOf = ({
   note,
   reason: "",
   confirmsWholeDay: false,
+  confirmsOpenEnd: false,
 });
 
 export function unaccountedWords(
@@ -77,7 +80,10 @@ export function CorrectShift({
   const locale = useLocale();
   const saved = useShiftSaved();
   const known = useQuery(references.tasks(siteId));
-  const form = useSchemaForm(ShiftCorrection, { defaultValues: bodyOf(shift) });
+  const form = useSchemaForm(ShiftCorrection, {
+    defaultValues: bodyOf(shift),
+    keepAs: shift.shiftId,
+  });
   const rows = useFieldArray({ control: form.control, name: "tasks" });
   const nameOf = (id: string) =>
     known.data?.rows.find((task) => task.id === id)?.name ??
@@ -86,6 +92,10 @@ export function CorrectShift({
   const change = useRevisedSave<Correction, Shift>({
     path: () => `/shifts/${shift.shiftId}`,
     schema: ShiftView,
+    toBody: (saved) => {
+      const { reason: _, ...facts } = bodyOf(saved);
+      return facts;
+    },
     onSaved: (next) => {
       saved(next);
       onDone();
@@ -98,6 +108,12 @@ export function CorrectShift({
   );
   const how = form.watch("unaccounted.how");
   const lengthMin = form.watch("lengthMin");
+  const endsAhead = isEndAhead(
+    shift.date,
+    { localStart: form.watch("localStart"), whichHour: form.watch("whichHour") ?? null, lengthMin },
+    shift.timeZone,
+    Date.now(),
+  );
   const tasksWords = (tasks: Correction["tasks"]) =>
     tasks
       .map(({ taskId, durationMin }) => `${nameOf(taskId)} ${formatDuration(durationMin, locale)}`)
@@ -241,6 +257,14 @@ export function CorrectShift({
             text={i18n.t("Yes, the shift was exactly 24 hours long")}
           />
         )}
+        {endsAhead && (
+          <CheckField
+            form={form}
+            name="confirmsOpenEnd"
+            label={i18n.t("End of the shift")}
+            text={i18n.t("Yes, it will end so; its end still lies ahead")}
+          />
+        )}
         <TextAreaField form={form} name="note" label={i18n.t("Note")} rows={2} isOptional />
         <TextAreaField form={form} name="reason" label={i18n.t("Why it is corrected")} rows={2} />
         <FormProblem error={change.error} />
@@ -256,6 +280,12 @@ export function CorrectShift({
           title={i18n.t("Someone saved this shift before you")}
           conflict={change.conflict}
           toBody={bodyOf}
+          savedBy={({ revisions, revision, timeZone }) => {
+            const last = revisions.find(({ number }) => number === revision);
+            return [last?.authorName, last && formatInstant(last.at, timeZone, locale)]
+              .filter(Boolean)
+              .join(", ");
+          }}
           fields={fields}
           isSaving={change.isSaving}
           onSave={change.save}

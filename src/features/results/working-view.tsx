@@ -298,13 +298,13 @@ function Equations({ equations }: { equations: readonly WorkingEquation[] }) {
   });
 }
 
-/** The three lines that head a working: the ear, the protector, the noise without it. Each is judged apart. */
+/** The lines that head a working: the ear, the protector, the noise without it, each figure of its own. Each is judged apart. */
 export function WorkingLines({ working }: { working: Working }) {
   const { i18n } = useLingui();
   const locale = useLocale();
   return (
     <table className="working-lines">
-      <caption className="sr-only">{i18n.t("The result in three lines")}</caption>
+      <caption className="sr-only">{i18n.t("The result, line by line")}</caption>
       <tbody>
         {working.lines.map((line) => {
           const { outcome } = line;

@@ -136,10 +136,12 @@ export function workingValueText(
       return value.name;
     case "text":
       return workingText(i18n, locale, value.text);
+    case "source":
+      return shortSourceText(i18n, value.source);
     case "list":
       return value.values
         .map((one) => workingValueText(i18n, locale, one))
-        .join(value.values.some(({ kind }) => kind === "text") ? "; " : " ");
+        .join(value.values.some(({ kind }) => kind === "text" || kind === "source") ? "; " : " ");
     case "math":
       return mathText(i18n, locale, value.parts, true);
   }
@@ -154,6 +156,12 @@ export function sourceText(i18n: I18n, { id, clause }: WorkingSource): string {
   return status === "from-memory"
     ? i18n.t("{cited} (clause from memory)", { cited: whole })
     : whole;
+}
+
+/** A document by its number and the clause, as it is cited in a table: the step's margin has its title. */
+export function shortSourceText(i18n: I18n, { id, clause }: WorkingSource): string {
+  const number = id === null ? "" : (i18n._(SOURCES[id].title).split(", ")[0] ?? "");
+  return [number, clause === "" ? "" : i18n._(clause)].filter(Boolean).join(", ");
 }
 
 /** A step's documents; several clauses of one are cited together. */

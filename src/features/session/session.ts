@@ -3,6 +3,7 @@ import type { Locale } from "../../../shared/i18n/index";
 import type { RoleName, SessionUser, SessionView } from "../../../shared/schemas/session";
 import { api, noReply } from "../../lib/api";
 import { rememberChoice } from "../../lib/i18n";
+import { forgetTyped } from "../../lib/keep-typed";
 
 const isSession = (value: unknown): value is SessionView =>
   typeof value === "object" && value !== null && "user" in value && "pendingName" in value;
@@ -36,6 +37,7 @@ export async function signOut(): Promise<void> {
   const { redirectTo } = await api.post("/auth/sign-out", {
     schema: { parse: (value) => value as { redirectTo: string } },
   });
+  forgetTyped();
   window.location.assign(redirectTo);
 }
 

@@ -169,7 +169,10 @@ export function StrikeChange({
 }) {
   const { i18n } = useLingui();
   const client = useQueryClient();
-  const form = useSchemaForm(WorkplaceChangeStrike, { defaultValues: { reason: "" } });
+  const form = useSchemaForm(WorkplaceChangeStrike, {
+    defaultValues: { reason: "" },
+    keepAs: change.id,
+  });
   const strike = useMutation({
     mutationFn: (body: { reason: string }) =>
       api.post(`/workplace-changes/${change.id}/strike`, {

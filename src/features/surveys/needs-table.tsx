@@ -1,5 +1,7 @@
+import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { Link } from "react-router-dom";
+import type { Locale } from "../../../shared/i18n/index";
 import type { MeasuringNeed } from "../../../shared/schemas/survey";
 import { DataTable } from "../../components/data-table";
 import { Empty } from "../../components/empty";
@@ -7,6 +9,25 @@ import { TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
 import { paths } from "../../paths";
 import { needWords } from "./survey-words";
+
+/** How a survey begins that is planned for these reasons: its purpose, and the tasks that they name. */
+function startOfSurvey(
+  i18n: I18n,
+  { siteId, jobId, reasons }: Pick<MeasuringNeed, "siteId" | "jobId" | "reasons">,
+  locale: Locale,
+): string {
+  const purpose = reasons.map((reason) => {
+    const { title, facts } = needWords(i18n, reason, locale);
+    return `${title}: ${facts}.`;
+  });
+  const taskIds = new Set(reasons.flatMap((reason) => ("taskIds" in reason ? reason.taskIds : [])));
+  const search = new URLSearchParams({ site: siteId, job: jobId, purpose: purpose.join("\n") });
+  if (taskIds.size > 0) {
+    search.set("strategy", "task");
+    search.set("tasks", [...taskIds].join(","));
+  }
+  return search.toString();
+}
 
 /** Groups that want measuring, the worst first, each with its reasons and the survey that would answer them. */
 export function NeedsTable({
@@ -89,13 +110,13 @@ export function NeedsTable({
           id: "survey",
           head: i18n.t("What to do"),
           kind: "right",
-          cell: ({ jobId, jobName, siteId, surveyId }) =>
+          cell: ({ jobId, jobName, siteId, surveyId, reasons }) =>
             surveyId ? (
               <TextLink to={paths.survey(surveyId)}>{i18n.t("Survey under way")}</TextLink>
             ) : canPlan ? (
               <Link
                 className="link is-strong"
-                to={`${paths.newSurvey}?site=${siteId}&job=${jobId}`}
+                to={`${paths.newSurvey}?${startOfSurvey(i18n, { siteId, jobId, reasons }, locale)}`}
                 aria-label={i18n.t("Plan a survey of {group}", { group: jobName })}
               >
                 {i18n.t("Plan a survey")}

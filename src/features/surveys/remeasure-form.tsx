@@ -47,6 +47,7 @@ function IntervalForm({ site, onDone }: { site: SiteInterval; onDone: () => void
   const { i18n } = useLingui();
   const client = useQueryClient();
   const form = useSchemaForm(RemeasureInput, {
+    keepAs: site.id,
     defaultValues: { remeasureAfterMonths: site.remeasureAfterMonths },
   });
   const done = () => {
@@ -57,6 +58,7 @@ function IntervalForm({ site, onDone }: { site: SiteInterval; onDone: () => void
   const { save, isSaving, error, conflict } = useRevisedSave<RemeasureInput, SiteInterval>({
     path: () => `/sites/${site.id}/remeasuring`,
     schema: MeasuringNeeds.shape.sites.element,
+    toBody: ({ remeasureAfterMonths }) => ({ remeasureAfterMonths }),
     onSaved: done,
     onError: showIssuesOn(form, i18n),
   });

@@ -10,6 +10,7 @@ const instrument = {
   kind: "dosimeter",
   class: "2",
   calibrationDueOn: "2026-12-09",
+  calibrationFailedOn: null,
   reservedBy: [],
 };
 const reserved = (fromDate: string, toDate: string, surveyId = "other") => ({
@@ -25,6 +26,8 @@ test("a certificate holds on its last day and not after it", () => {
   expect(codes({})).toEqual([]);
   expect(codes({ calibrationDueOn: "2026-12-08" })).toEqual(["certificate-expires"]);
   expect(codes({ calibrationDueOn: null })).toEqual(["no-certificate-date"]);
+  const failed = { calibrationDueOn: "2026-11-15", calibrationFailedOn: "2026-11-15" };
+  expect(codes(failed)).toEqual(["calibration-failed"]);
 });
 
 test("another survey's reservation warns where the days meet, one's own never", () => {

@@ -29,6 +29,10 @@ export function Reservations({
     });
   const warningText = ({ code, date, surveyName }: ReservationWarning) => {
     switch (code) {
+      case "calibration-failed":
+        return i18n.t("failed its calibration on {date}", {
+          date: formatShortDate(date ?? "", locale),
+        });
       case "certificate-expires":
         return i18n.t("its certificate ends on {date}, before then", {
           date: formatShortDate(date ?? "", locale),

@@ -1,8 +1,9 @@
 import { useLingui } from "@lingui/react";
 import { useQueryClient } from "@tanstack/react-query";
-import { useState } from "react";
+import { useEffect, useRef, useState } from "react";
 import type { UseFormReturn } from "react-hook-form";
 import type { z } from "zod";
+import { type NoisePattern, planTaskSampling } from "../../../shared/acoustics/survey-plan";
 import { formatShortDate } from "../../../shared/format/date";
 import { formatDuration, formatMinutes } from "../../../shared/format/duration";
 import {
@@ -24,6 +25,8 @@ import { messageUnder } from "./form-message";
 import { surveyQueries } from "./queries";
 import { Reservations } from "./reservations-field";
 import {
+  NOISE_PATTERNS,
+  noisePatternWord,
   patternWords,
   planReason,
   riskFactorTitle,
@@ -46,14 +49,18 @@ const noAnswers: RiskFactors = {
 
 const toBody = (view: SurveyDetail): SurveyInput => SurveyInput.parse(view);
 
+const toTarget = ({
+  taskId,
+  samplesCount,
+  sampleMin,
+  pattern,
+  cycleMin,
+}: SurveyPlan["targets"][number]) => ({ taskId, samplesCount, sampleMin, pattern, cycleMin });
+
 /** What the plan proposes, as the form's values. */
 const proposed = ({ targets, people, seed }: Planned) => ({
   drawSeed: seed,
-  targets: targets.map(({ taskId, samplesCount, sampleMin }) => ({
-    taskId,
-    samplesCount,
-    sampleMin,
-  })),
+  targets: targets.map(toTarget),
   people: people.map(({ workerId, part }) => ({ workerId, part })),
 });
 
@@ -65,9 +72,16 @@ export function SurveyForm({
   siteId,
   jobId,
   today,
+  purpose,
+  taskIds,
+  onDirty,
   onSaved,
   onLeave,
 }: {
+  /** Why it is planned, in words; and the tasks that are to be sampled, where the reason names some. Of a new one. */
+  purpose?: string;
+  taskIds?: readonly string[];
+  onDirty?: (isDirty: boolean) => void;
   /** Null: a new one. */
   survey: SurveyDetail | null;
   plan: SurveyPlan;
@@ -114,6 +128,7 @@ export function SurveyForm({
       schema={SurveyInput}
       viewSchema={SurveyDetail}
       path="/surveys"
+      keepAs={jobId}
       record={survey}
       toBody={toBody}
       defaultValues={
@@ -126,14 +141,14 @@ export function SurveyForm({
                 group: jobName,
                 date: formatShortDate(today, locale),
               }),
-              purpose: "",
+              purpose: purpose ?? "",
               strategy: plan.strategy,
               fromDate: today,
               toDate: today,
               observers: [],
               riskFactors: noAnswers,
               reservations: [],
-              ...proposed(plan),
+              ...proposed(narrowed(plan, taskIds ?? [])),
             }
       }
       conflictTitle={i18n.t("Someone saved this survey before you")}
@@ -191,6 +206,16 @@ export function SurveyForm({
     >
       {(form) => (
         <>
+          <KeptPlan
+            form={form}
+            plan={plan}
+            onDirty={onDirty}
+            onOther={(asked) =>
+              void client
+                .fetchQuery(surveyQueries.plan({ siteId, jobId, ...asked }))
+                .then(setPlan, setProblem)
+            }
+          />
           <TextField form={form} name="name" label={i18n.t("Name")} />
           <TextAreaField form={form} name="purpose" label={i18n.t("Purpose")} rows={2} isOptional />
           <StrategyField
@@ -220,6 +245,65 @@ export function SurveyForm({
     </RecordForm>
   );
 }
+
+/** A plan of which only some tasks are to be sampled; of all of them where it has none of those. */
+const narrowed = (plan: SurveyPlan, taskIds: readonly string[]): SurveyPlan => {
+  const targets = plan.targets.filter(({ taskId }) => taskId !== null && taskIds.includes(taskId));
+  return targets.length === 0 ? plan : { ...plan, targets };
+};
+
+/** What was typed before a reload rests on the plan that was drawn then: it is fetched again by its seed. */
+function KeptPlan({
+  form,
+  plan,
+  onDirty,
+  onOther,
+}: {
+  form: SurveyFormState;
+  plan: SurveyPlan;
+  onDirty?: (isDirty: boolean) => void;
+  onOther: (asked: { strategy: Strategy; seed: string }) => void;
+}) {
+  const [strategy, seed] = form.watch(["strategy", "drawSeed"]);
+  const { isDirty } = form.formState;
+  const isOther = plan.strategy !== strategy || plan.seed !== seed;
+  const latest = useRef(onOther);
+  latest.current = onOther;
+  useEffect(() => {
+    // A plan that is being asked for anew sets the form's values itself.
+    const timer = setTimeout(() => isOther && latest.current({ strategy, seed }), 400);
+    return () => clearTimeout(timer);
+  }, [isOther, strategy, seed]);
+  useEffect(() => onDirty?.(isDirty), [isDirty, onDirty]);
+  return null;
+}
+
+type TypedTarget = Input["targets"][number];
+const figure = (value: unknown) => (typeof value === "number" ? value : null);
+
+/** What the standard asks for of a target, by the pattern of its noise that was chosen. */
+function askedOf(
+  plan: SurveyPlan,
+  facts: SurveyPlan["targets"][number],
+  { taskId, pattern = "steady", cycleMin = null }: TypedTarget,
+): Pick<SurveyPlan["targets"][number], "samplesCount" | "sampleMin" | "reasons"> {
+  if (taskId === null || plan.strategy !== "task" || facts.nominalMin === null) return facts;
+  const { sampleCount, sampleMin, reasons } = planTaskSampling({
+    durationMin: facts.nominalMin,
+    pattern,
+    cycleMin: figure(cycleMin),
+    samplesDb: [],
+  });
+  return { samplesCount: sampleCount, sampleMin, reasons: [...reasons] };
+}
+
+/** Fewer samples than are asked for, or shorter ones. */
+const belowAsked = (
+  { samplesCount, sampleMin }: TypedTarget,
+  asked: { samplesCount: number; sampleMin: number },
+): boolean =>
+  (figure(samplesCount) ?? asked.samplesCount) < asked.samplesCount ||
+  (figure(sampleMin) ?? asked.sampleMin) < asked.sampleMin - 1e-9;
 
 function StrategyField({
   form,
@@ -283,8 +367,17 @@ function TargetsField({
       shouldDirty: true,
       shouldValidate: form.formState.isSubmitted,
     });
-  const change = (index: number, name: "samplesCount" | "sampleMin", value: Typed) =>
-    put(targets.map((target, at) => (at === index ? { ...target, [name]: value } : target)));
+  const change = (index: number, part: Partial<Record<keyof TypedTarget, Typed | string>>) =>
+    put(targets.map((target, at) => (at === index ? { ...target, ...part } : target)));
+  /** Another pattern asks for another length; one that somebody typed stays. */
+  const choosePattern = (index: number, part: { pattern: NoisePattern; cycleMin: Typed }) => {
+    const target = targets[index]!;
+    const facts = plan.targets.find(({ taskId }) => taskId === target.taskId);
+    const before = facts && askedOf(plan, facts, target);
+    const after = facts && askedOf(plan, facts, { ...target, ...part } as TypedTarget);
+    const isAsAsked = before !== undefined && target.sampleMin === before.sampleMin;
+    change(index, { ...part, ...(after && isAsAsked ? { sampleMin: after.sampleMin } : {}) });
+  };
   const left = plan.targets.filter(
     ({ taskId }) => !targets.some((target) => target.taskId === taskId),
   );
@@ -317,6 +410,8 @@ function TargetsField({
             <tbody>
               {targets.map((target, index) => {
                 const facts = plan.targets.find(({ taskId }) => taskId === target.taskId);
+                const asked = facts && askedOf(plan, facts, target);
+                const below = asked && belowAsked(target, asked);
                 const name =
                   facts?.taskName ??
                   (target.taskId ? survey?.taskNames[target.taskId] : null) ??
@@ -327,9 +422,50 @@ function TargetsField({
                       {name}
                       {facts && (
                         <span className="beneath block">
-                          {facts.reasons
+                          {(asked?.reasons ?? facts.reasons)
                             .map(({ code, clause }) => `${planReason(i18n, code)} (${clause})`)
                             .join("; ")}
+                        </span>
+                      )}
+                      {target.taskId !== null && (
+                        <span className="survey-pattern">
+                          <select
+                            className="input"
+                            aria-label={i18n.t("How the noise of {task} runs", { task: name })}
+                            value={target.pattern ?? "steady"}
+                            onChange={({ target: { value } }) =>
+                              choosePattern(index, {
+                                pattern: value as NoisePattern,
+                                cycleMin: null,
+                              })
+                            }
+                          >
+                            {NOISE_PATTERNS.map((pattern) => (
+                              <option key={pattern} value={pattern}>
+                                {noisePatternWord(i18n, pattern)}
+                              </option>
+                            ))}
+                          </select>
+                          {target.pattern === "cyclic" && (
+                            <label className="survey-cycle">
+                              {i18n.t("Minutes of a cycle")}
+                              <NumberInput
+                                aria-label={i18n.t("Minutes of a cycle of {task}", { task: name })}
+                                value={target.cycleMin ?? null}
+                                onValue={(cycleMin) =>
+                                  choosePattern(index, { pattern: "cyclic", cycleMin })
+                                }
+                              />
+                            </label>
+                          )}
+                        </span>
+                      )}
+                      {below && asked && (
+                        <span className="is-fault block">
+                          {i18n.t(
+                            "Below what the standard asks for: {samples}. Shorter samples are refused unless somebody says why they are kept.",
+                            { samples: samplesOfLength(i18n, asked, locale) },
+                          )}
                         </span>
                       )}
                     </th>
@@ -344,12 +480,12 @@ function TargetsField({
                           }`}
                         >
                           {facts.observed.sdMin === null
-                            ? i18n.t("really {mean} min, in {count} of {all} shifts", {
+                            ? i18n.t("as worked {mean} min, in {count} of {all} shifts", {
                                 mean: formatMinutes(facts.observed.meanMin, locale),
                                 count: facts.observed.count,
                                 all: facts.observed.shiftsCount,
                               })
-                            : i18n.t("really {mean} ± {sd} min, in {count} of {all} shifts", {
+                            : i18n.t("as worked {mean} ± {sd} min, in {count} of {all} shifts", {
                                 mean: formatMinutes(facts.observed.meanMin, locale),
                                 sd: formatMinutes(facts.observed.sdMin, locale),
                                 count: facts.observed.count,
@@ -362,14 +498,14 @@ function TargetsField({
                       <NumberInput
                         aria-label={i18n.t("Samples of {task}", { task: name })}
                         value={target.samplesCount}
-                        onValue={(value) => change(index, "samplesCount", value)}
+                        onValue={(value) => change(index, { samplesCount: value })}
                       />
                     </td>
                     <td data-label={i18n.t("Minutes each")}>
                       <NumberInput
                         aria-label={i18n.t("Minutes of each sample of {task}", { task: name })}
                         value={target.sampleMin}
-                        onValue={(value) => change(index, "sampleMin", value)}
+                        onValue={(value) => change(index, { sampleMin: value })}
                       />
                     </td>
                     <td>
@@ -390,14 +526,14 @@ function TargetsField({
           {left.length > 0 && (
             <p className="beneath">
               {i18n.t("Left out:")}{" "}
-              {left.map(({ taskId, taskName, samplesCount, sampleMin }) => (
+              {left.map((planned) => (
                 <TextButton
-                  key={taskId ?? "whole"}
+                  key={planned.taskId ?? "whole"}
                   className="mr-4"
-                  onClick={() => put([...targets, { taskId, samplesCount, sampleMin }])}
+                  onClick={() => put([...targets, toTarget(planned)])}
                 >
                   {i18n.t("sample {task} again", {
-                    task: taskName ?? i18n.t("The whole of the work"),
+                    task: planned.taskName ?? i18n.t("The whole of the work"),
                   })}
                 </TextButton>
               ))}
@@ -481,7 +617,9 @@ function PeopleField({
 /** Who watches while it is measured: one name a line. */
 function ObserversField({ form }: { form: SurveyFormState }) {
   const { i18n } = useLingui();
-  const [text, setText] = useState(() => (form.getValues("observers") ?? []).join("\n"));
+  const observers = form.watch("observers") ?? [];
+  const [typed, setTyped] = useState<string | null>(null);
+  const text = typed ?? observers.join("\n");
   return (
     <Field
       label={i18n.t("Who observes")}
@@ -496,7 +634,7 @@ function ObserversField({ form }: { form: SurveyFormState }) {
           {...wires}
           value={text}
           onChange={(event) => {
-            setText(event.target.value);
+            setTyped(event.target.value);
             form.setValue(
               "observers",
               event.target.value

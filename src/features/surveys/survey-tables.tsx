@@ -2,6 +2,7 @@ import { useLingui } from "@lingui/react";
 import { formatDate, formatShortDate } from "../../../shared/format/date";
 import { formatDuration } from "../../../shared/format/duration";
 import { formatLevel } from "../../../shared/format/level";
+import { withoutStop } from "../../../shared/format/words";
 import { RUN_DOUBTS } from "../../../shared/schemas/run-doubts";
 import type { SurveyDetail, SurveySample, TargetResult } from "../../../shared/schemas/survey";
 import { DataTable } from "../../components/data-table";
@@ -75,7 +76,9 @@ export function ResultsTable({ survey }: { survey: SurveyDetail }) {
               </span>
               {result.keptReasons.map((reason) => (
                 <span key={reason} className="beneath">
-                  {i18n.t("kept: {reason}. Not by the standard’s name any more.", { reason })}
+                  {i18n.t("kept: {reason}. Not by the standard’s name any more.", {
+                    reason: withoutStop(reason),
+                  })}
                 </span>
               ))}
             </span>

@@ -58,6 +58,20 @@ export function patternWords(i18n: I18n, pattern: string): string {
   }
 }
 
+export const NOISE_PATTERNS = ["steady", "cyclic", "fluctuating"] as const;
+
+/** How the noise of a task runs, which decides how long its samples last. */
+export function noisePatternWord(i18n: I18n, pattern: (typeof NOISE_PATTERNS)[number]): string {
+  switch (pattern) {
+    case "steady":
+      return i18n.t("steady noise");
+    case "cyclic":
+      return i18n.t("noise in cycles");
+    case "fluctuating":
+      return i18n.t("noise that fluctuates");
+  }
+}
+
 export function stateTitle(i18n: I18n, state: State): string {
   switch (state) {
     case "planned":

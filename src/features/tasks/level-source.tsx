@@ -2,6 +2,7 @@ import { useLingui } from "@lingui/react";
 import type { z } from "zod";
 import { formatShortDate } from "../../../shared/format/date";
 import { formatLevel } from "../../../shared/format/level";
+import { withoutStop } from "../../../shared/format/words";
 import type { TaskLevelView } from "../../../shared/schemas/task";
 import { TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
@@ -42,7 +43,7 @@ export function LevelSource({ level }: { level: Level }) {
       </ul>
       {level.keptReasons.map((reason) => (
         <p key={reason}>
-          <b>{i18n.t("Kept: {reason}.", { reason })}</b>{" "}
+          <b>{i18n.t("Kept: {reason}.", { reason: withoutStop(reason) })}</b>{" "}
           {i18n.t("The level no longer bears the standard’s name.")}
         </p>
       ))}

@@ -19,10 +19,23 @@ export function EventValues({
   const lines = valueLines(words, values);
   const list = (
     <ul className="event-values">
-      {lines.map(({ field, text, before }) => (
+      {lines.map(({ field, text, parts, before }) => (
         <li key={field}>
           <span className="event-field">{field}</span>{" "}
-          {before === null ? text : `${before} → ${text}`}
+          {parts ? (
+            <details>
+              <summary className="link">{text}</summary>
+              <ul>
+                {parts.map((part) => (
+                  <li key={part}>{part}</li>
+                ))}
+              </ul>
+            </details>
+          ) : before === null ? (
+            text
+          ) : (
+            `${before} → ${text}`
+          )}
         </li>
       ))}
     </ul>

@@ -17,6 +17,15 @@ export const SUBJECT_KINDS = [
   "job",
   "file",
   "recording",
+  "survey",
+  "workplace-change",
+  "history-import",
+  "time-history",
+  "fit-test",
+  "microphone-check",
+  "protector-issue",
+  "wearing-round",
+  "warning-signal",
 ] as const;
 export type SubjectKind = (typeof SUBJECT_KINDS)[number];
 
@@ -59,6 +68,20 @@ export function subjectWord(i18n: I18n, kind: string): string {
       return i18n.t("Survey");
     case "workplace-change":
       return i18n.t("Change at work");
+    case "history-import":
+      return i18n.t("File of levels");
+    case "time-history":
+      return i18n.t("Time history");
+    case "fit-test":
+      return i18n.t("Fit test");
+    case "microphone-check":
+      return i18n.t("Two-microphone check");
+    case "protector-issue":
+      return i18n.t("Issue of a protector");
+    case "wearing-round":
+      return i18n.t("Wearing round");
+    case "warning-signal":
+      return i18n.t("Warning signal");
     default:
       return kind;
   }
@@ -139,6 +162,7 @@ export function actionWord(i18n: I18n, action: string): string {
     case "store-history":
       return i18n.t("Stored");
     case "cancel-history-import":
+    case "cancel-microphone-check":
       return i18n.t("Cancelled");
     case "change-history-stretches":
       return i18n.t("Stretches changed");
@@ -147,13 +171,42 @@ export function actionWord(i18n: I18n, action: string): string {
     case "record-sample":
     case "record-shift":
     case "record-run":
+    case "record-fit-test":
+    case "record-wearing-round":
       return i18n.t("Recorded");
     case "correct-shift":
     case "correct-run":
+    case "correct-fit-test":
       return i18n.t("Corrected");
     case "void-shift":
     case "void-run":
+    case "void-fit-test":
+    case "strike-wearing-round":
       return i18n.t("Struck out");
+    case "start-microphone-check":
+      return i18n.t("Recordings sent in");
+    case "type-microphone-check":
+      return i18n.t("Levels typed in");
+    case "analyse-microphone-check":
+      return i18n.t("Analysed");
+    case "refuse-microphone-check":
+      return i18n.t("Could not be used");
+    case "swap-microphone-check":
+      return i18n.t("Outside and inside swapped");
+    case "keep-microphone-check":
+      return i18n.t("Kept as a fit test");
+    case "issue-protector":
+      return i18n.t("Handed out");
+    case "acknowledge-issue":
+      return i18n.t("Receipt confirmed");
+    case "end-issue":
+      return i18n.t("Issue ended");
+    case "enter-stock":
+      return i18n.t("Stock entered");
+    case "record-refusal":
+      return i18n.t("Protector refused");
+    case "set-fit-policy":
+      return i18n.t("Rules for fit tests changed");
     case "record-workplace-change":
       return i18n.t("Entered");
     case "strike-workplace-change":
@@ -170,6 +223,8 @@ export function actionWord(i18n: I18n, action: string): string {
       return i18n.t("No longer absent");
     case "open-finding":
       return i18n.t("Opened");
+    case "rejudge-finding":
+      return i18n.t("Judged anew");
     case "withdraw-finding":
       return i18n.t("Withdrawn after a correction");
     case "report-problem":

@@ -1,12 +1,21 @@
 import { describe, expect, test } from "vitest";
 import type { NamedThing } from "../../../shared/schemas/audit-event";
 import { CrewInput, MembershipInput, SupervisorInput } from "../../../shared/schemas/crew";
+import {
+  FitPolicyInput,
+  FitTestChange,
+  FitTestInput,
+  IssueEnd,
+  IssueInput,
+} from "../../../shared/schemas/fit";
 import { NewProtectorInput } from "../../../shared/schemas/protector";
 import { InstrumentInput, RunCorrection, RunInput } from "../../../shared/schemas/run";
 import { ShiftCorrection } from "../../../shared/schemas/shift";
 import { AreaInput, NewSiteInput, SiteSettingsInput } from "../../../shared/schemas/site";
 import { JobInput, NewTaskInput } from "../../../shared/schemas/task";
 import { UserInput } from "../../../shared/schemas/user";
+import { WarningSignalInput } from "../../../shared/schemas/warning-signal";
+import { WearingRoundInput } from "../../../shared/schemas/wearing";
 import { AssignmentInput, WorkerInput } from "../../../shared/schemas/worker";
 import { testI18n } from "../../lib/test-i18n";
 import { hasFieldWord } from "./field-words";
@@ -40,6 +49,14 @@ describe("a value of the trail reads as it does on the other screens", () => {
     expect(text("workerId", tavernor)).toBe("D. Tavernor");
     expect(text("workerId", elsewhere)).toBe("not shown to you");
     expect(text("workerIds", [tavernor, elsewhere])).toBe("D. Tavernor; not shown to you");
+  });
+
+  test("a name from right to left leaves its date where it stands", () => {
+    const name = "\u05d0\u05d1\u05d2";
+    const day = { id: ostmere, kind: "shift", name, date: "2026-12-01", code: null };
+    expect(text("shiftId", ostmere, { names: new Map([[ostmere, day]]) })).toBe(
+      `\u2068${name}\u2069, 1 Dec 2026`,
+    );
   });
 
   test("figures keep every stored digit and carry their unit", () => {
@@ -95,6 +112,39 @@ describe("a value of the trail reads as it does on the other screens", () => {
   });
 });
 
+describe("stretches of a time history", () => {
+  const stretch = (fromS: number, toS: number) => ({
+    kind: "task",
+    taskId: grinding,
+    fromS,
+    toS,
+  });
+  const leftOut = { kind: "left-out", reason: "knocked", fromS: 4200, toS: 4205 };
+
+  test("a few stand with their times from the beginning", () => {
+    expect(text("stretches", [stretch(0, 4200), leftOut])).toBe(
+      "00:00 to 01:10 Grinding; 01:10 to 01:10:05 left out, knocked",
+    );
+  });
+
+  test("many are counted, with each behind it", () => {
+    const stretches = [0, 1, 2, 3].map((hour) => stretch(hour * 3600, (hour + 1) * 3600));
+    expect(valueLines(words(), { stretches })).toEqual([
+      {
+        field: "Stretches",
+        text: "4 stretches",
+        parts: [
+          "00:00 to 01:00 Grinding",
+          "01:00 to 02:00 Grinding",
+          "02:00 to 03:00 Grinding",
+          "03:00 to 04:00 Grinding",
+        ],
+        before: null,
+      },
+    ]);
+  });
+});
+
 describe("lines", () => {
   test("a change says what was before; empty members and the record's own ids are left out", () => {
     expect(
@@ -136,12 +186,14 @@ test("every field of a form that the trail records has its word", () => {
     ...[AreaInput, NewSiteInput, SiteSettingsInput, CrewInput, MembershipInput, SupervisorInput],
     ...[NewProtectorInput, InstrumentInput, RunInput, RunCorrection, ShiftCorrection, JobInput],
     ...[NewTaskInput, UserInput, AssignmentInput, WorkerInput],
+    ...[FitTestInput, FitTestChange, FitPolicyInput, IssueInput, IssueEnd],
+    ...[WearingRoundInput, WarningSignalInput],
   ];
   const names = new Set(forms.flatMap((form) => [...membersOf(form)]));
   expect(names.size).toBeGreaterThan(60);
   // Said within the words of their whole, or never recorded.
   const within = ["how", "exchangeRateDb", "criterionLevelDb", "thresholdDb", "response"];
-  const never = ["requirementReason", "confirmsWholeDay"];
+  const never = ["requirementReason", "confirmsWholeDay", "confirmsOpenEnd"];
   expect(
     [...names].filter((name) => !hasFieldWord(name) && ![...within, ...never].includes(name)),
   ).toEqual([]);

@@ -5,9 +5,11 @@ import { formatDate, formatInstant, formatShortDate } from "../../../shared/form
 import { formatDuration } from "../../../shared/format/duration";
 import { editNumber, NO_FIGURE } from "../../../shared/format/number";
 import { isLocale, LOCALE_NAMES, type Locale } from "../../../shared/i18n/index";
+import { isolate } from "../../../shared/i18n/isolate";
 import { RULE_SETS } from "../../../shared/rule-sets/index";
 import type { AuditEventView, NamedThing } from "../../../shared/schemas/audit-event";
 import { FINDING_KINDS, FindingState } from "../../../shared/schemas/finding";
+import type { HistoryStretch } from "../../../shared/schemas/history";
 import {
   gradeWord,
   instrumentClassWord,
@@ -33,6 +35,31 @@ export interface ValueWords {
 const isId = /^[0-9a-f]{8}(-[0-9a-f]{4}){3}-[0-9a-f]{12}$/;
 const isDate = /^\d{4}-\d\d-\d\d$/;
 const isInstant = /^\d{4}-\d\d-\d\dT[\d:.]+(Z|[+-]\d\d:\d\d)$/;
+
+/** More than this is counted, and stands folded. */
+const MOST_IN_A_LINE = 3;
+const HOUR_S = 3600;
+
+/** Time from the beginning of a history: 01:10, and 01:10:05 where it has seconds. */
+function offsetText(atS: number): string {
+  const two = (value: number) => String(Math.floor(value)).padStart(2, "0");
+  const seconds = Math.round(atS % 60);
+  const text = `${two(atS / HOUR_S)}:${two((atS % HOUR_S) / 60)}`;
+  return seconds === 0 ? text : `${text}:${two(seconds)}`;
+}
+
+/** "00:00 to 01:10 Plate hammering": a stretch of a time history. */
+function stretchText(words: ValueWords, { fromS, toS, ...rest }: HistoryStretch): string {
+  const what =
+    rest.kind === "task"
+      ? nameText(words, rest.taskId)
+      : words.i18n.t("left out, {reason}", { reason: rest.reason });
+  return words.i18n.t("{from} to {to} {what}", {
+    from: offsetText(fromS),
+    to: offsetText(toS),
+    what,
+  });
+}
 
 /** A member of an event's values as a person reads it: named, in words, exact, with its unit. */
 export function valueText(words: ValueWords, field: string, value: unknown): string {
@@ -75,7 +102,7 @@ export function nameText({ i18n, locale, names }: ValueWords, id: string): strin
   const { name, date, code } = thing;
   return [
     code && isFindingKind(code) ? findingWord(i18n, code) : null,
-    name,
+    name && isolate(name),
     date && formatShortDate(date, locale),
   ]
     .filter(Boolean)
@@ -110,6 +137,24 @@ const CODED: Readonly<Record<string, Coded>> = {
     })[code],
   whichHour: ({ i18n }, code: string) =>
     ({ first: i18n.t("the first"), second: i18n.t("the second") })[code],
+  method: ({ i18n }, code: string) =>
+    ({
+      psychophysical: i18n.t("Heard thresholds"),
+      "real-ear-microphones": i18n.t("Microphones in the real ear"),
+      "two-microphones": i18n.t("Two microphones"),
+    })[code],
+  ear: ({ i18n }, code: string) => ({ left: i18n.t("left"), right: i18n.t("right") })[code],
+  how: ({ i18n }, code: string) =>
+    ({
+      returned: i18n.t("brought back"),
+      lost: i18n.t("lost"),
+      damaged: i18n.t("broken"),
+      replaced: i18n.t("replaced"),
+    })[code],
+  acknowledgedHow: ({ i18n }, code: string) =>
+    ({ "in-person": i18n.t("in person"), "own-page": i18n.t("on the own page") })[code],
+  source: ({ i18n }, code: string) =>
+    ({ round: i18n.t("a round"), "own-report": i18n.t("own report") })[code],
   workers: ({ i18n }, code: string) =>
     ({ number: i18n.t("employee number"), name: i18n.t("name") })[code],
 };
@@ -145,6 +190,8 @@ function stateText(i18n: I18n, code: string): string | undefined {
 function listText(words: ValueWords, field: string, values: readonly unknown[]): string {
   if (values.length === 0) return NO_FIGURE;
   const isFigures = values.every((value) => value === null || typeof value === "number");
+  if (field === "stretches")
+    return values.map((value) => stretchText(words, value as HistoryStretch)).join("; ");
   if (!isFigures) return values.map((value) => valueText(words, field, value)).join("; ");
   const figures = values.map(
     (value) => editNumber(value as number | null, words.locale) || NO_FIGURE,
@@ -204,6 +251,8 @@ const OWN_IDS: ReadonlySet<string> = new Set(["entryId", "assignmentId", "fileId
 export interface ValueLine {
   readonly field: string;
   readonly text: string;
+  /** What the text only counts. */
+  readonly parts?: readonly string[];
   /** What stood there before, where it is a change. */
   readonly before: string | null;
 }
@@ -226,6 +275,15 @@ export function valueLines(
     .filter(([name, value]) => value !== null && value !== "" && !OWN_IDS.has(name))
     .map(([name, value]) => {
       const field = name === "state" ? words.i18n.t("State") : fieldWord(words.i18n, name);
+      if (name === "stretches" && Array.isArray(value) && value.length > MOST_IN_A_LINE)
+        return {
+          field,
+          text: words.i18n.t("{count, plural, one {# stretch} other {# stretches}}", {
+            count: value.length,
+          }),
+          parts: value.map((stretch) => stretchText(words, stretch)),
+          before: null,
+        };
       if (!isChange(value)) return { field, text: valueText(words, name, value), before: null };
       const code = name === "state" ? "to" : name;
       return {

@@ -4,8 +4,8 @@ import type { z } from "zod";
 import { formatDate, localDateOf } from "../../../shared/format/date";
 import type { WorkerView } from "../../../shared/schemas/worker";
 import { Button } from "../../components/button";
+import { FormProblem } from "../../components/form-problem";
 import { useLocale } from "../../lib/i18n";
-import { problemText } from "../../lib/problem-text";
 import { useIssueCode } from "./queries";
 
 /** A code for a worker without e-mail, on paper: shown once, and nowhere again. */
@@ -44,11 +44,7 @@ export function SignInSlip({
           </Button>
         </p>
       )}
-      {issue.error && (
-        <p className="field-error" role="alert">
-          {problemText(i18n, issue.error)}
-        </p>
-      )}
+      <FormProblem error={issue.error} />
       {issue.data && (
         <div className="slip">
           <div className="slip-head">

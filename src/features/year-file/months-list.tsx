@@ -17,12 +17,15 @@ export function MonthsList({
   year,
   months,
   frame,
+  hasLimitAtEar,
   today,
 }: {
   year: number;
   /** Without: they are being read. */
   months: readonly GapMonth[] | undefined;
   frame: StripFrame | null;
+  /** Of any rule set of the year: without, nothing is counted at the ear. */
+  hasLimitAtEar: boolean;
   /** ISO date at the site. */
   today: string;
 }) {
@@ -31,7 +34,7 @@ export function MonthsList({
   const limits = frame?.limits ?? [];
   const isThisYear = today.startsWith(String(year));
   const thisMonth = isThisYear ? Number(today.slice(5, 7)) : null;
-  const counted = (name: CountName) => !(AT_EAR.has(name) && frame?.hasLimitAtEar === false);
+  const counted = (name: CountName) => !(AT_EAR.has(name) && !hasLimitAtEar);
   const heads: Record<CountName, string> = {
     days: i18n.t("Days"),
     over: i18n.t("Over at the ear"),

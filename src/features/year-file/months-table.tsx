@@ -51,12 +51,15 @@ export function MonthsTable({
   year,
   months,
   frame,
+  hasLimitAtEar,
   today,
 }: {
   year: number;
   /** Without: they are being read. */
   months: readonly GapMonth[] | undefined;
   frame: StripFrame | null;
+  /** Of any rule set of the year: without, nothing is counted at the ear. */
+  hasLimitAtEar: boolean;
   /** ISO date at the site. */
   today: string;
 }) {
@@ -73,7 +76,7 @@ export function MonthsTable({
   const [limit] = limits;
   // Where the rule has no limit at the ear there is nothing to count: that is not zero.
   const figure = (name: CountName, value: number) =>
-    AT_EAR.has(name) && frame?.hasLimitAtEar === false ? NO_FIGURE : count(value);
+    AT_EAR.has(name) && !hasLimitAtEar ? NO_FIGURE : count(value);
   return (
     <div className="table-frame">
       <section

@@ -1,9 +1,6 @@
 import type { I18n } from "@lingui/core";
-import type { FieldPath, FieldValues, UseFormSetError } from "react-hook-form";
-import { formatNumber } from "../../../shared/format/number";
-import type { Locale } from "../../../shared/i18n/index";
-import { issueText } from "../../../shared/problems/issue-text";
-import { ApiError } from "../../lib/api";
+import { formatNumber } from "../format/number";
+import type { Locale } from "../i18n/index";
 
 type Params = Readonly<Record<string, unknown>>;
 
@@ -18,6 +15,10 @@ export function recordingText(i18n: I18n, code: string, params: Params): string 
       return i18n.t("This is not a WAV file. Export the recording as WAV and send it again.");
     case "recording-header-damaged":
       return i18n.t("The file is damaged: its head can’t be read. Export it again.");
+    case "recording-not-numbers":
+      return i18n.t(
+        "The file is damaged: some of its samples are no numbers. Export the recording again.",
+      );
     case "recording-compressed":
       return i18n.t(
         "The recording is compressed, and compression changes levels. Export it as plain PCM or floating point.",
@@ -46,6 +47,15 @@ export function recordingText(i18n: I18n, code: string, params: Params): string 
             stated,
           })
         : i18n.t("The file ends earlier than it promises.");
+    }
+    case "recording-longer": {
+      const [found, stated] = [figure("foundS", 1), figure("statedS", 1)];
+      return found && stated
+        ? i18n.t(
+            "The file goes on after its end: it promises {stated} s, and {found} s are there. All of it can be used.",
+            { found, stated },
+          )
+        : i18n.t("The file goes on after its end. All of it can be used.");
     }
     case "recording-clipped": {
       const share = figure("sharePct", 2);
@@ -95,22 +105,4 @@ export function recordingText(i18n: I18n, code: string, params: Params): string 
     default:
       return null;
   }
-}
-
-/** As `showIssuesOn`, in the words of recordings. */
-export function showRecordingIssuesOn<Values extends FieldValues>(
-  form: { setError: UseFormSetError<Values> },
-  i18n: I18n,
-): (error: unknown) => void {
-  return (error) => {
-    if (!(error instanceof ApiError)) return;
-    error.issues.forEach((issue, index) => {
-      const message = recordingText(i18n, issue.code, issue.params) ?? issueText(i18n, issue);
-      form.setError(
-        (issue.path || "root") as FieldPath<Values>,
-        { type: issue.code, message },
-        { shouldFocus: index === 0 },
-      );
-    });
-  };
 }

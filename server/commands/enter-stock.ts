@@ -1,0 +1,69 @@
+import { randomUUID } from "node:crypto";
+import type { StockMoveInput } from "../../shared/schemas/stock";
+import { recordAudit } from "../lib/audit";
+import { dateIssues, todayAt } from "../lib/calendar";
+import { execute, row } from "../lib/db";
+import { issue, unprocessable } from "../lib/errors";
+import type { Actor } from "../lib/policy";
+
+/** What a kind entered by hand does to the stock. */
+const SIGN = { received: 1, lost: -1, damaged: -1, changed: -1 } as const;
+
+/**
+ * Something that came into a site's stock or left it otherwise than with a worker. A count enters the difference; the
+ * model's row is locked, so that two counts don't both enter theirs.
+ *
+ * @throws AppError invalid.
+ */
+export async function enterStock(
+  actor: Actor,
+  site: { id: string; timeZone: string },
+  input: StockMoveInput,
+): Promise<string> {
+  const { modelId, size, part, kind, movedOn, note } = input;
+  const today = todayAt(site.timeZone);
+  const issues = dateIssues(["movedOn"], movedOn);
+  if (movedOn > today) issues.push(issue(["movedOn"], "in-the-future", { today }));
+  if (issues.length > 0) throw unprocessable(issues);
+  const quantity =
+    kind === "counted"
+      ? input.quantity - (await stockNow(site.id, { modelId, size, part }))
+      : SIGN[kind] * input.quantity;
+  const id = randomUUID();
+  await execute(
+    `INSERT INTO stock_moves (id, organization_id, site_id, model_id, size, part, kind, quantity, moved_on, note, author_id)
+     VALUES ($1, $2, $3, $4, $5, $6, $7, $8, $9, $10, $11)`,
+    [
+      id,
+      actor.organizationId,
+      site.id,
+      modelId,
+      size,
+      part,
+      kind,
+      quantity,
+      movedOn,
+      note,
+      actor.userId,
+    ],
+  );
+  await recordAudit(actor, {
+    action: "enter-stock",
+    subjectKind: "site",
+    subjectId: site.id,
+    values: { ...input, quantity },
+  });
+  return id;
+}
+
+async function stockNow(
+  siteId: string,
+  { modelId, size, part }: Pick<StockMoveInput, "modelId" | "size" | "part">,
+): Promise<number> {
+  const found = await row<{ quantity: number }>(
+    `SELECT coalesce(sum(quantity), 0)::int AS quantity FROM stock_moves
+     WHERE site_id = :siteId AND model_id = :modelId AND part = :part AND size IS NOT DISTINCT FROM CAST(:size AS text)`,
+    { siteId, modelId, part, size },
+  );
+  return found?.quantity ?? 0;
+}

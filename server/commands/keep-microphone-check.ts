@@ -1,0 +1,131 @@
+import type { Ear, EarBands, FitFacts, FitTestChange } from "../../shared/schemas/fit";
+import type { CheckAnalysis, CheckKeep } from "../../shared/schemas/microphone-check";
+import { recordAudit } from "../lib/audit";
+import { execute, row } from "../lib/db";
+import { AppError, issue, notFound, unprocessable } from "../lib/errors";
+import { type Actor, authorize, findVisible } from "../lib/policy";
+import { FitTest, type MicrophoneCheck } from "../models/fit";
+import type { Worker } from "../models/worker";
+import { fitPolicy } from "../policies";
+import { correctFitTest, recordFitTest } from "./record-fit-test";
+
+const METHOD = "two-microphones";
+
+/**
+ * A check that gave a personal attenuation becomes a fit test of its own, or the other ear of one of the same day. Check
+ * and worker are locked. Returns the fit test's id.
+ *
+ * @throws AppError wrong-state where it is not analysed or gave none; invalid, not-found.
+ */
+export async function keepMicrophoneCheck(
+  actor: Actor,
+  check: MicrophoneCheck,
+  worker: Worker,
+  keep: CheckKeep,
+): Promise<string> {
+  const { analysis, state } = check;
+  if (state !== "analysed" || !analysis || analysis.parDb === null)
+    throw new AppError("wrong-state", 409);
+  const fitTestId =
+    keep.joinFitTestId === null
+      ? await keepAlone(actor, check, worker, analysis, keep)
+      : await join(actor, check, analysis, keep, keep.joinFitTestId);
+  await execute(
+    "UPDATE microphone_checks SET state = 'kept', fit_test_id = $2, updated_at = now(), revision = revision + 1 WHERE id = $1",
+    [check.id, fitTestId],
+  );
+  await recordAudit(actor, {
+    action: "keep-microphone-check",
+    subjectKind: "microphone-check",
+    subjectId: check.id,
+    values: { workerId: check.workerId, fitTestId, ...keep },
+  });
+  return fitTestId;
+}
+
+async function keepAlone(
+  actor: Actor,
+  { modelId, ear, siteId }: MicrophoneCheck,
+  worker: Worker,
+  analysis: CheckAnalysis,
+  { testedOn, size, needDb }: CheckKeep,
+): Promise<string> {
+  const site = await row<Pick<FitTestChange, "confidencePct">>(
+    `SELECT fit_confidence_pct AS "confidencePct" FROM sites WHERE id = :siteId`,
+    { siteId },
+  );
+  if (!site) throw notFound();
+  const facts = withEar(null, ear, analysis);
+  const { id } = await recordFitTest(
+    actor,
+    worker,
+    { modelId, testedOn, method: METHOD, size, facts, ...site, needDb, note: "" },
+    analysis.active?.hasPassed ?? null,
+  );
+  return id;
+}
+
+interface Kept extends Omit<FitTestChange, "reason"> {
+  activePassed: boolean | null;
+}
+
+/** A new revision of the other ear's test. Its size, need and confidence stay. */
+async function join(
+  actor: Actor,
+  { ear, workerId, modelId }: MicrophoneCheck,
+  analysis: CheckAnalysis,
+  { testedOn }: CheckKeep,
+  fitTestId: string,
+): Promise<string> {
+  const test = await findVisible(FitTest, fitPolicy, fitTestId, actor, { lock: true });
+  authorize(fitPolicy, actor, "change", test);
+  const kept = await row<Kept>(
+    `SELECT v.method, v.size, v.facts, v.confidence_pct AS "confidencePct", v.need_db AS "needDb", v.note, v.active_passed AS "activePassed"
+     FROM fit_tests f JOIN fit_test_revisions v ON v.id = f.current_revision_id WHERE f.id = :id`,
+    { id: test.id },
+  );
+  if (!kept) throw notFound();
+  const { activePassed, ...statement } = kept;
+  const isOther =
+    test.workerId === workerId &&
+    test.modelId === modelId &&
+    test.testedOn === testedOn &&
+    !test.isVoid &&
+    statement.method === METHOD &&
+    trialsOf(statement.facts, ear).length === 0;
+  if (!isOther) throw unprocessable([issue(["joinFitTestId"], "not-the-other-ear")]);
+  await correctFitTest(
+    actor,
+    test,
+    { ...statement, facts: withEar(statement.facts, ear, analysis), reason: "other-ear" },
+    bothEars(activePassed, analysis.active?.hasPassed ?? null),
+  );
+  return test.id;
+}
+
+const trialsOf = ({ leftDb, rightDb }: FitFacts, ear: Ear) => (ear === "left" ? leftDb : rightDb);
+
+/** One ear that failed fails the check; it is passed where both were checked and passed. */
+function bothEars(one: boolean | null, other: boolean | null): boolean | null {
+  if (one === false || other === false) return false;
+  return one === null || other === null ? null : true;
+}
+
+/** What was found, laid beside what is known of the other ear. */
+function withEar(
+  earlier: FitFacts | null,
+  ear: Ear,
+  { parDb, ear: bands, methodSdDb }: CheckAnalysis,
+): FitFacts {
+  const trials = parDb === null ? [] : [parDb];
+  const own = (side: Ear, given: number[]) => (side === ear ? trials : given);
+  const bandsOf = (side: Ear): EarBands | null =>
+    side === ear ? bands : (earlier?.bands?.[side] ?? null);
+  return {
+    leftDb: own("left", earlier?.leftDb ?? []),
+    rightDb: own("right", earlier?.rightDb ?? []),
+    // The larger of the two: the trials share one figure.
+    methodSdDb: Math.max(methodSdDb, earlier?.methodSdDb ?? 0),
+    bands: { left: bandsOf("left"), right: bandsOf("right") },
+  };
+}

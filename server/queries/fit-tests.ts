@@ -1,0 +1,71 @@
+import type { z } from "zod";
+import type { FitTestFilter, FitTestView } from "../../shared/schemas/fit";
+import { decodeCursor, pageFrom } from "../lib/cursor";
+import { rows } from "../lib/db";
+import { type Actor, abilities, visible } from "../lib/policy";
+import { fitPolicy } from "../policies";
+import { dueAfterTest } from "./fit-dues";
+
+type Found = Omit<FitTestView, "can">;
+
+/** The test that counts of a worker and a model: the latest that stands. */
+const isLatest = `NOT f.is_void AND v.par_db IS NOT NULL AND NOT EXISTS (
+  SELECT 1 FROM fit_tests x JOIN fit_test_revisions y ON y.id = x.current_revision_id AND y.par_db IS NOT NULL
+  WHERE x.worker_id = f.worker_id AND x.model_id = f.model_id AND NOT x.is_void AND (x.tested_on, x.created_at) > (f.tested_on, f.created_at))`;
+
+const passedBefore = `(SELECT y.has_passed FROM fit_tests x JOIN fit_test_revisions y ON y.id = x.current_revision_id AND y.par_db IS NOT NULL
+  WHERE x.worker_id = f.worker_id AND x.model_id = f.model_id AND NOT x.is_void AND (x.tested_on, x.created_at) < (f.tested_on, f.created_at)
+  ORDER BY x.tested_on DESC, x.created_at DESC LIMIT 1)`;
+
+const SELECT_FIT_TESTS = `SELECT f.id, f.revision, f.site_id AS "siteId", f.worker_id AS "workerId", w.name AS "workerName", w.employee_number AS "employeeNumber",
+    f.model_id AS "modelId", m.name AS "modelName", f.tested_on::text AS "testedOn", v.method, v.size, v.facts, v.confidence_pct AS "confidencePct",
+    v.need_db AS "needDb", v.note, v.left_db AS "leftDb", v.right_db AS "rightDb", v.par_db AS "parDb", v.has_passed AS "hasPassed",
+    v.active_passed AS "activePassed", f.is_void AS "isVoid", u.name AS "authorName",
+    CASE WHEN EXISTS (SELECT 1 FROM protector_issues i WHERE i.fit_test_id = f.id) THEN 'issued' ELSE 'tried' END AS outcome,
+    CASE WHEN ${isLatest} THEN (${dueAfterTest("f.tested_on", "v.has_passed", passedBefore, "NULL::date")})::text END AS "dueOn"
+  FROM fit_tests f JOIN fit_test_revisions v ON v.id = f.current_revision_id JOIN workers w ON w.id = f.worker_id
+  JOIN sites s ON s.id = f.site_id JOIN protector_models m ON m.id = f.model_id LEFT JOIN users u ON u.id = v.author_id`;
+
+const present = (actor: Actor, test: Found): FitTestView => ({
+  ...test,
+  can: { change: abilities(fitPolicy, actor, test).change && !test.isVoid },
+});
+
+/** Fit tests, the latest first; struck ones stand among them. */
+export async function listFitTests(
+  actor: Actor,
+  filter: z.output<typeof FitTestFilter>,
+): Promise<{ rows: FitTestView[]; next: string | null }> {
+  const before = decodeCursor(filter.cursor, 2);
+  const conditions = [
+    visible(fitPolicy, actor, "f"),
+    filter.siteId && "f.site_id = :siteId",
+    filter.workerId && "f.worker_id = :workerId",
+    filter.modelId && "f.model_id = :modelId",
+    before && "(f.tested_on, f.id) < (CAST(:beforeDate AS date), CAST(:beforeId AS uuid))",
+  ].filter(Boolean);
+  const found = await rows<Found>(
+    `${SELECT_FIT_TESTS} WHERE ${conditions.join(" AND ")} ORDER BY f.tested_on DESC, f.id DESC LIMIT :limit`,
+    {
+      siteId: filter.siteId,
+      workerId: filter.workerId,
+      modelId: filter.modelId,
+      beforeDate: before?.[0] ?? null,
+      beforeId: before?.[1] ?? null,
+      limit: filter.limit + 1,
+    },
+  );
+  return pageFrom(
+    found.map((test) => present(actor, test)),
+    filter.limit,
+    ({ testedOn, id }) => [testedOn, id],
+  );
+}
+
+export async function fitTestsById(actor: Actor, id: string): Promise<FitTestView[]> {
+  const found = await rows<Found>(
+    `${SELECT_FIT_TESTS} WHERE f.id = :id AND ${visible(fitPolicy, actor, "f")}`,
+    { id },
+  );
+  return found.map((test) => present(actor, test));
+}

@@ -1,0 +1,69 @@
+import type { z } from "zod";
+import type { IssueFilter, IssuePage, IssueView } from "../../shared/schemas/fit";
+import { decodeCursor, pageFrom } from "../lib/cursor";
+import { rows } from "../lib/db";
+import { type Actor, abilities, visible } from "../lib/policy";
+import { issuePolicy } from "../policies";
+
+type Found = Omit<IssueView, "can">;
+
+const SELECT_ISSUES = `SELECT i.id, i.revision, i.site_id AS "siteId", i.worker_id AS "workerId", w.name AS "workerName", w.employee_number AS "employeeNumber",
+    i.model_id AS "modelId", m.name AS "modelName", i.size, coalesce(t.name, r.name) AS "useName", i.issued_on::text AS "issuedOn",
+    ARRAY(SELECT o.name FROM protector_models o WHERE o.id = ANY (i.offered_model_ids) ORDER BY o.name, o.id) AS offered,
+    i.was_instructed AS "wasInstructed", i.reason, i.acknowledged_how AS "acknowledgedHow", i.ended_on::text AS "endedOn", i.ended_how AS "endedHow",
+    v.par_db AS "parDb", u.name AS "authorName"
+  FROM protector_issues i JOIN workers w ON w.id = i.worker_id JOIN protector_models m ON m.id = i.model_id
+  JOIN assignments a ON a.id = i.assignment_id LEFT JOIN tasks t ON t.id = a.task_id LEFT JOIN areas r ON r.id = a.area_id
+  LEFT JOIN fit_tests f ON f.id = i.fit_test_id AND NOT f.is_void LEFT JOIN fit_test_revisions v ON v.id = f.current_revision_id
+  LEFT JOIN users u ON u.id = i.author_id`;
+
+function present(actor: Actor, found: Found): IssueView {
+  const can = abilities(issuePolicy, actor, found);
+  const isOpen = found.endedOn === null;
+  return {
+    ...found,
+    reason: can.end ? found.reason : null,
+    can: {
+      end: can.end && isOpen,
+      acknowledge: can.acknowledge && isOpen && found.acknowledgedHow === null,
+    },
+  };
+}
+
+/** What was handed out, the latest first. */
+export async function listIssues(
+  actor: Actor,
+  filter: z.output<typeof IssueFilter>,
+): Promise<z.input<typeof IssuePage>> {
+  const before = decodeCursor(filter.cursor, 2);
+  const conditions = [
+    visible(issuePolicy, actor, "i"),
+    filter.siteId && "i.site_id = :siteId",
+    filter.workerId && "i.worker_id = :workerId",
+    filter.state === "open" && "i.ended_on IS NULL",
+    before && "(i.issued_on, i.id) < (CAST(:beforeDate AS date), CAST(:beforeId AS uuid))",
+  ].filter(Boolean);
+  const found = await rows<Found>(
+    `${SELECT_ISSUES} WHERE ${conditions.join(" AND ")} ORDER BY i.issued_on DESC, i.id DESC LIMIT :limit`,
+    {
+      siteId: filter.siteId,
+      workerId: filter.workerId,
+      beforeDate: before?.[0] ?? null,
+      beforeId: before?.[1] ?? null,
+      limit: filter.limit + 1,
+    },
+  );
+  return pageFrom(
+    found.map((one) => present(actor, one)),
+    filter.limit,
+    ({ issuedOn, id }) => [issuedOn, id],
+  );
+}
+
+export async function issuesById(actor: Actor, id: string): Promise<IssueView[]> {
+  const found = await rows<Found>(
+    `${SELECT_ISSUES} WHERE i.id = :id AND ${visible(issuePolicy, actor, "i")}`,
+    { id },
+  );
+  return found.map((one) => present(actor, one));
+}

@@ -1,0 +1,170 @@
+import { evaluateDay } from "../../shared/acoustics/day";
+import { attenuationNeed } from "../../shared/acoustics/protection/attenuation-need";
+import type { DayInput, RuleSetVersion, TimedTask } from "../../shared/acoustics/types";
+import { ruleSetVersion } from "../../shared/rule-sets";
+import type { AttenuationNeed } from "../../shared/schemas/fit";
+import { rows } from "../lib/db";
+import type { Worker } from "../models/worker";
+import { gridTasks } from "./day-grid";
+import { type DayRefs, hydrateDays } from "./day-inputs";
+import { settingsInForce } from "./site-settings";
+
+type Person = Pick<Worker, "id" | "siteId" | "jobId" | "mustWear" | "personalTargetDb">;
+
+/** Days that say what a worker's noise is like now. Common practice, no source. */
+const RECENT_DAYS = 20;
+const RECENT_FOR_DAYS = 92;
+
+export interface WorkerNoise {
+  need: AttenuationNeed;
+  governing: RuleSetVersion;
+  /** The day that asks for most, under the rules of today; null: no noise is known. */
+  day: DayInput | null;
+  /** The task in it that does; null where the rule judges the shift. */
+  task: TimedTask | null;
+}
+
+interface Asking {
+  day: DayInput;
+  task: TimedTask | null;
+  outsideDb: number;
+}
+
+/**
+ * What a worker's noise asks of a protector under the rules in force: by the worker's own recent days, and where there is
+ * none by the nominal day of the job. By EN 458 the loudest task in noise asks, by Appendix B the shift.
+ *
+ * @throws AppError not-computed, where the site has no rules on that date.
+ */
+export async function workerNoise(worker: Person, date: string): Promise<WorkerNoise> {
+  const settings = await settingsInForce(worker.siteId, date);
+  const governing = ruleSetVersion(settings.governingRuleSet, settings.ruleSetVersion);
+  if (!governing) throw new Error("a rule set in force has a version");
+  const site = {
+    wearFromDb: settings.wearFromDb,
+    creditsActivePart: settings.creditsActivePart,
+    usesUncertainty: settings.usesUncertainty,
+  };
+  const judgedNow = (day: DayInput): DayInput => ({
+    ...day,
+    site,
+    mustWear: worker.mustWear,
+    personalTargetDb: worker.personalTargetDb,
+  });
+  const recent = await recentDays(worker.id, date);
+  const days = recent.length > 0 ? recent : await nominalDay(worker, date, site);
+  const [loudest] = days
+    .flatMap((day) => askingOf(judgedNow(day), governing))
+    .toSorted((a, b) => b.outsideDb - a.outsideDb);
+  if (!loudest)
+    return {
+      need: unknown("no-noise"),
+      governing,
+      day: days[0] ? judgedNow(days[0]) : null,
+      task: null,
+    };
+  const { day, task, outsideDb } = loudest;
+  const need = attenuationNeed(outsideDb, governing.protection, worker.personalTargetDb);
+  const taskName = task?.name ?? null;
+  return {
+    governing,
+    day,
+    task,
+    need: need
+      ? { ...need, outsideDb, taskName, reason: recent.length > 0 ? null : "nominal-day" }
+      : { ...unknown("not-stated"), outsideDb, taskName },
+  };
+}
+
+const unknown = (reason: string): AttenuationNeed => ({
+  needDb: null,
+  outsideDb: null,
+  targetDb: null,
+  taskName: null,
+  mostDb: null,
+  reason,
+});
+
+/** What in a day asks for a protector: each task, or the shift as a whole. */
+function askingOf(day: DayInput, governing: RuleSetVersion): Asking[] {
+  const { adequacy } = governing.protection;
+  if (adequacy === "appendix-b") {
+    const { outsideDb } = evaluateDay(bare(day), governing, []);
+    return outsideDb === null ? [] : [{ day, task: null, outsideDb }];
+  }
+  return day.shifts.flatMap(({ tasks }) =>
+    tasks.flatMap((task) =>
+      task.level && task.durationMin > 0 ? [{ day, task, outsideDb: task.level.levelDb }] : [],
+    ),
+  );
+}
+
+const bare = (day: DayInput): DayInput => ({
+  ...day,
+  shifts: day.shifts.map((shift) => ({
+    ...shift,
+    tasks: shift.tasks.map((task) => ({ ...task, protection: null })),
+  })),
+});
+
+async function recentDays(workerId: string, date: string): Promise<DayInput[]> {
+  const found = await rows<{ workerId: string; date: string; refs: DayRefs }>(
+    `SELECT d.worker_id AS "workerId", d.date::text AS date, r.refs FROM days d JOIN day_results r ON r.id = d.current_result_id
+     WHERE d.worker_id = :workerId AND r.origin = 'computed' AND d.date <= CAST(:date AS date) AND d.date > CAST(:date AS date) - ${RECENT_FOR_DAYS}
+     ORDER BY d.date DESC LIMIT ${RECENT_DAYS}`,
+    { workerId, date },
+  );
+  return found.length === 0 ? [] : hydrateDays(found);
+}
+
+/** The job's nominal day with the levels of that date, as one shift; nothing where the worker has no job with tasks. */
+async function nominalDay(
+  worker: Person,
+  date: string,
+  site: DayInput["site"],
+): Promise<DayInput[]> {
+  if (worker.jobId === null) return [];
+  const nominal = await rows<{ taskId: string; durationMin: number }>(
+    `SELECT task_id AS "taskId", duration_min AS "durationMin" FROM job_tasks WHERE job_id = :jobId ORDER BY position`,
+    { jobId: worker.jobId },
+  );
+  const known = new Map((await gridTasks(worker.siteId, date)).map((task) => [task.id, task]));
+  const tasks = nominal.flatMap(({ taskId, durationMin }): TimedTask[] => {
+    const task = known.get(taskId);
+    if (!task) return [];
+    const { name, zone, level } = task;
+    return [
+      {
+        id: taskId,
+        taskId,
+        name,
+        durationMin,
+        level,
+        zone,
+        protection: null,
+        wornPct: 100,
+        wornIsShiftWide: false,
+      },
+    ];
+  });
+  if (tasks.length === 0) return [];
+  return [
+    {
+      workerId: worker.id,
+      date,
+      shifts: [
+        {
+          id: worker.jobId,
+          revisionId: null,
+          lengthMin: tasks.reduce((sum, { durationMin }) => sum + durationMin, 0),
+          tasks,
+          unaccounted: { how: "unknown" },
+          readings: [],
+        },
+      ],
+      site,
+      personalTargetDb: worker.personalTargetDb,
+      mustWear: worker.mustWear,
+    },
+  ];
+}

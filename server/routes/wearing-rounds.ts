@@ -1,0 +1,82 @@
+import { z } from "zod";
+import { IdParams, IsoDate } from "../../shared/schemas/common";
+import {
+  WearingFilter,
+  WearingRoundInput,
+  WearingRoundPage,
+  WearingRoundStrike,
+  WearingRoundView,
+  WearingTally,
+} from "../../shared/schemas/wearing";
+import { recordWearingRound } from "../commands/record-wearing-round";
+import { strikeWearingRound } from "../commands/strike-wearing-round";
+import { endpoint } from "../lib/endpoint";
+import { authorize, findVisible } from "../lib/policy";
+import { requireRevision } from "../lib/revision";
+import { WearingRound } from "../models/shop-floor";
+import { Site } from "../models/site";
+import { Crew } from "../models/worker";
+import { crewPolicy, may, sitePolicy, wearingPolicy } from "../policies";
+import { listWearingRounds, wearingRoundView, wearingTally } from "../queries/wearing-rounds";
+
+export function defineWearingRoutes(): void {
+  endpoint.get(
+    "/crews/:id/wearing-tally",
+    {
+      summary: "Whom a round through a crew looks at on a date",
+      may: may.observe,
+      params: IdParams,
+      query: z.object({ date: IsoDate }),
+      reply: WearingTally,
+    },
+    async ({ actor, params, query }) =>
+      wearingTally(await findVisible(Crew, crewPolicy, params.id, actor), query.date),
+  );
+
+  endpoint.get(
+    "/wearing-rounds",
+    {
+      summary: "Rounds and own reports of wearing, the latest first",
+      may: may.readWearing,
+      query: WearingFilter,
+      reply: WearingRoundPage,
+    },
+    ({ actor, query }) => listWearingRounds(actor, query),
+  );
+
+  endpoint.post(
+    "/wearing-rounds",
+    {
+      summary: "Enter who was seen wearing it",
+      may: may.observe,
+      body: WearingRoundInput,
+      reply: WearingRoundView,
+    },
+    async ({ actor, body }) => {
+      const site = await findVisible(Site, sitePolicy, body.siteId, actor);
+      return wearingRoundView(actor, await recordWearingRound(actor, site, body));
+    },
+  );
+
+  endpoint.post(
+    "/wearing-rounds/:id/strike",
+    {
+      summary: "Strike a round made by mistake, with the reason",
+      may: may.officer,
+      params: IdParams,
+      body: WearingRoundStrike,
+      reply: WearingRoundView,
+      status: 200,
+      needsRevision: true,
+    },
+    async ({ actor, params, body, ifMatch }) => {
+      const round = await findVisible(WearingRound, wearingPolicy, params.id, actor, {
+        lock: true,
+      });
+      authorize(wearingPolicy, actor, "strike", round);
+      await requireRevision(round, ifMatch, () => wearingRoundView(actor, round.id));
+      await strikeWearingRound(actor, round, body.reason);
+      return wearingRoundView(actor, round.id);
+    },
+  );
+}

@@ -1,0 +1,465 @@
+import { type ExchangeLaw, levelFactor, weightOf } from "../exchange-law";
+import {
+  type AttenuationMethod,
+  OCTAVE_BANDS_HZ,
+  type OctaveBandValues,
+  type Protection,
+  type ProtectorData,
+  type ProtectorWord,
+  type RuleSetVersion,
+  type TaskLevel,
+} from "../types";
+import { appendixBWord, en458Word } from "./adequacy";
+import { DERATINGS, lcMinusLaDb } from "./attenuation";
+import { combinationAttenuationDb } from "./bone-conduction";
+import { doubleAttenuationDb } from "./double";
+import { A_WEIGHTING_DB, assumedAttenuationDb, hmlOfBandsDb, snrOfBandsDb } from "./octave-band";
+import { deratedAttenuationDb, derateType, hmlReductionDb } from "./single-number";
+
+type Rule = RuleSetVersion["protection"];
+export type WornGear = "helmet" | "glasses" | "respirator";
+type WorksWith = Readonly<Record<WornGear, boolean | null>>;
+
+/** A model, or two together, as the register offers it at a site. */
+export interface Offer extends Pick<Protection, "inner" | "outer" | "combinationBands"> {
+  readonly name: string;
+  /** False: not to be worn together with it. Of two worn together, what either says. */
+  readonly worksWith: WorksWith;
+  readonly isArchived: boolean;
+  /** Null: not counted at this site. */
+  readonly stock: number | null;
+}
+
+export interface OwnFit {
+  readonly parDb: number;
+  readonly hasPassed: boolean | null;
+  /** ISO date. */
+  readonly testedOn: string;
+}
+
+/** Who is to wear it, and in what. */
+export interface Wearer {
+  readonly noises: readonly { readonly level: TaskLevel; readonly durationMin: number }[];
+  /** A stricter target of this worker's own, dB. */
+  readonly personalTargetDb: number | null;
+  readonly wornGear: readonly WornGear[];
+  /** For how long a battery has to last, minutes. */
+  readonly wornMin: number;
+  /** The fit that counts, by model. */
+  readonly fits: ReadonlyMap<string, OwnFit>;
+}
+
+/** A comparison of two candidates, in the order in which they are made. */
+export type DecidedBy =
+  | "first"
+  | "compatibility"
+  | "adequacy"
+  | "margin"
+  | "fit"
+  | "battery"
+  | "stock"
+  | "name";
+
+export interface RankedProtector {
+  readonly modelId: string;
+  readonly outerModelId: string | null;
+  readonly name: string;
+  readonly kind: string;
+  readonly excludedBy: {
+    readonly code: "gear" | "no-data" | "archived";
+    readonly gear: WornGear | null;
+  } | null;
+  readonly word: ProtectorWord | null;
+  /** While worn in the deciding noise; by Appendix B the TWA of all noises. Active part off, dB(A). */
+  readonly wornDb: number | null;
+  /** By how far the lower-confidence level at the ear stays under the target, dB. */
+  readonly marginDb: number | null;
+  readonly lastFit: OwnFit | null;
+  readonly batteryMin: number | null;
+  readonly batteryLasts: boolean | null;
+  readonly stock: number | null;
+  readonly decidedBy: DecidedBy;
+}
+
+/** Share of users that the lower-confidence level protects, as α: 95 %. @source iso-4869-2 4 */
+const LOWER_CONFIDENCE_ALPHA = 1.64;
+
+/** An offer with all that does not depend on who wears it. */
+interface Prepared {
+  readonly offer: Offer;
+  /** 10^(−attenuation/10) by band at the rule's α and at the lower confidence; NaN where not known. */
+  readonly lossFactors: Float64Array | null;
+  readonly lowFactors: Float64Array | null;
+  readonly hml: { readonly hDb: number; readonly mDb: number; readonly lDb: number } | null;
+  readonly snrDb: number | null;
+  /** Off the A-weighted level; null where the C-weighted one is taken, see `usRatingDb`. */
+  readonly usReductionDb: number | null;
+  /** Off the C-weighted level where that is known and nothing is derated. */
+  readonly usRatingDb: number | null;
+  readonly percentileDb: number | null;
+  readonly slc80Db: number | null;
+}
+
+/** A noise with what all offers need of it. */
+interface Noise {
+  readonly levelDb: number;
+  readonly durationMin: number;
+  /** A-weighted powers by band, NaN where not known; null without a spectrum. */
+  readonly powers: Float64Array | null;
+  readonly lcLaDb: number | null;
+  readonly statedLcLaDb: number | null;
+}
+
+/**
+ * Orders the protectors of a register for many workers. The offers are prepared once; each worker is then a matter of
+ * some sums.
+ *
+ * The order is lexicographic: what gear, missing data or the archive exclude comes last; then the word while worn
+ * (active part off, which a battery can't take away); then the lower-confidence margin under the target, in whole
+ * decibels, since no method is surer (where all are too much: the least of it); own fit; whether the battery lasts;
+ * stock; name. Each says which comparison put it behind the one before.
+ *
+ * The lower-confidence level is that of mean − 1.64 deviations where the octave-band method governs; a personal fit is
+ * stated with its confidence, and a single number has its share protected in it.
+ *
+ * @source en-458 Annex A
+ * @source iso-4869-2 4, 6
+ */
+export class ProtectorChoice {
+  /** By name, which is the last comparison. */
+  private readonly prepared: readonly Prepared[];
+
+  constructor(
+    offers: readonly Offer[],
+    private readonly rule: Rule,
+    /** The rule's law without a threshold: by it Appendix B's TWA adds up. */
+    private readonly law: ExchangeLaw,
+  ) {
+    this.prepared = offers
+      .map((offer) => prepare(offer, rule))
+      .sort((a, b) => (a.offer.name < b.offer.name ? -1 : a.offer.name > b.offer.name ? 1 : 0));
+  }
+
+  for(wearer: Wearer): RankedProtector[] {
+    const { prepared } = this;
+    const noises = wearer.noises.map(toNoise);
+    const targetDb = targetOf(this.rule, wearer.personalTargetDb);
+    const found = prepared.map((one) => this.atEar(one, noises, fitOf(one, wearer), targetDb));
+    const places = Float64Array.from(
+      prepared,
+      (one, index) => placeOf(one, wearer, found[index]!) * prepared.length + index,
+    ).sort();
+    let before: number | null = null;
+    return Array.from(places, (key) => {
+      const index = key % prepared.length;
+      const place = (key - index) / prepared.length;
+      const decidedBy = before === null ? "first" : decidingComparison(before, place);
+      before = place;
+      return shownAs(prepared[index]!, wearer, found[index]!, decidedBy);
+    });
+  }
+
+  /** The deciding noise of all; null where the rule's methods say nothing of one of them, or there is none. */
+  private atEar(
+    prepared: Prepared,
+    noises: readonly Noise[],
+    fit: OwnFit | null,
+    targetDb: number | null,
+  ): AtEar | null {
+    if (noises.length === 0) return null;
+    const { rule, law } = this;
+    const isByShift = rule.adequacy === "appendix-b";
+    let wornSum = 0;
+    let lowSum = 0;
+    let deciding: AtEar | null = null;
+    let worstMarginDb = Number.POSITIVE_INFINITY;
+    for (const noise of noises) {
+      const governing = reductionDb(prepared, noise, rule, fit);
+      if (governing === null) return null;
+      const wornDb = noise.levelDb - Math.max(0, governing.reductionDb);
+      const lowDb = noise.levelDb - Math.max(0, governing.lowReductionDb);
+      if (isByShift) {
+        wornSum += noise.durationMin * weightOf(wornDb, law);
+        lowSum += noise.durationMin * weightOf(lowDb, law);
+        continue;
+      }
+      const word =
+        rule.adequacy === "en-458" && targetDb !== null ? en458Word(wornDb, targetDb) : null;
+      if (targetDb !== null) worstMarginDb = Math.min(worstMarginDb, targetDb - lowDb);
+      if (deciding === null || decidesBefore(word, wornDb, deciding)) {
+        deciding = { word, wornDb, marginDb: null };
+      }
+    }
+    if (!isByShift) return { ...deciding!, marginDb: targetDb === null ? null : worstMarginDb };
+    const factor = levelFactor(law);
+    const wornDb = factor * Math.log10(wornSum / law.referenceMin);
+    const lowDb = factor * Math.log10(lowSum / law.referenceMin);
+    return {
+      word: targetDb === null ? null : appendixBWord(wornDb, targetDb),
+      wornDb,
+      marginDb: targetDb === null ? null : targetDb - lowDb,
+    };
+  }
+}
+
+interface AtEar {
+  readonly word: ProtectorWord | null;
+  readonly wornDb: number;
+  readonly marginDb: number | null;
+}
+
+const fitOf = ({ offer }: Prepared, { fits }: Wearer): OwnFit | null =>
+  offer.outer === null ? (fits.get(offer.inner.modelId) ?? null) : null;
+
+/** Null: nothing speaks against it. */
+function exclusionOf(
+  { offer }: Prepared,
+  { wornGear }: Wearer,
+  atEar: AtEar | null,
+): RankedProtector["excludedBy"] {
+  if (offer.isArchived) return ARCHIVED;
+  for (const gear of wornGear) if (offer.worksWith[gear] === false) return { code: "gear", gear };
+  return atEar === null ? NO_DATA : null;
+}
+
+const ARCHIVED = { code: "archived", gear: null } as const;
+const NO_DATA = { code: "no-data", gear: null } as const;
+
+function batteryLasts({ inner }: Offer, wornMin: number): boolean | null {
+  const batteryMin = inner.active?.batteryMin ?? null;
+  return batteryMin === null ? null : batteryMin >= wornMin;
+}
+
+/** Both of the middle words will do; what is unknown comes after what is known to be wrong. */
+const ADEQUACY: Readonly<Record<ProtectorWord, number>> = {
+  good: 0,
+  enough: 0,
+  "just-enough": 1,
+  "strong-side": 1,
+  "too-much": 2,
+  "too-little": 3,
+};
+const ADEQUACY_UNKNOWN = 4;
+
+/** The comparisons before the name, the first one first, with how many places each has. */
+const COMPARISONS = [
+  ["compatibility", 2],
+  ["adequacy", 5],
+  ["margin", 1024],
+  ["fit", 3],
+  ["battery", 3],
+  ["stock", 3],
+] as const satisfies readonly (readonly [DecidedBy, number])[];
+
+/** The places in all comparisons as the digits of one number: less is better. */
+function placeOf(prepared: Prepared, wearer: Wearer, atEar: AtEar | null): number {
+  const { offer } = prepared;
+  const fit = fitOf(prepared, wearer);
+  const lasts = batteryLasts(offer, wearer.wornMin);
+  const word = atEar?.word ?? null;
+  let place = exclusionOf(prepared, wearer, atEar) === null ? 0 : 1;
+  place = 5 * place + (word === null ? ADEQUACY_UNKNOWN : ADEQUACY[word]);
+  place = 1024 * place + marginStep(atEar?.marginDb ?? null, word);
+  place = 3 * place + (fit === null || fit.hasPassed === null ? 1 : fit.hasPassed ? 0 : 2);
+  place = 3 * place + (offer.inner.active === null || lasts === true ? 0 : lasts === null ? 1 : 2);
+  return 3 * place + (offer.stock === null ? 1 : offer.stock > 0 ? 0 : 2);
+}
+
+/** The first of the digits that differs. */
+function decidingComparison(before: number, place: number): DecidedBy {
+  let decidedBy: DecidedBy = "name";
+  let [a, b] = [before, place];
+  for (let at = COMPARISONS.length - 1; at >= 0 && a !== b; at--) {
+    const [name, places] = COMPARISONS[at]!;
+    if (a % places !== b % places) decidedBy = name;
+    a = Math.floor(a / places);
+    b = Math.floor(b / places);
+  }
+  return decidedBy;
+}
+
+/** Whole decibels of margin, the most first; of what is too much anyway the least first. */
+function marginStep(marginDb: number | null, word: ProtectorWord | null): number {
+  const step = Math.max(-MIDDLE, Math.min(MIDDLE, Math.floor(marginDb ?? 0)));
+  return MIDDLE + (word === "too-much" ? step : -step);
+}
+
+/** No level is further than this from its target, dB. */
+const MIDDLE = 511;
+
+function shownAs(
+  prepared: Prepared,
+  wearer: Wearer,
+  atEar: AtEar | null,
+  decidedBy: DecidedBy,
+): RankedProtector {
+  const { offer } = prepared;
+  return {
+    modelId: offer.inner.modelId,
+    outerModelId: offer.outer?.modelId ?? null,
+    name: offer.name,
+    kind: offer.inner.kind,
+    excludedBy: exclusionOf(prepared, wearer, atEar),
+    word: atEar?.word ?? null,
+    wornDb: atEar?.wornDb ?? null,
+    marginDb: atEar?.marginDb ?? null,
+    lastFit: fitOf(prepared, wearer),
+    batteryMin: offer.inner.active?.batteryMin ?? null,
+    batteryLasts: batteryLasts(offer, wearer.wornMin),
+    stock: offer.stock,
+    decidedBy,
+  };
+}
+
+/** Too little before all (the loudest), then too much (the quietest), then the loudest. */
+function decidesBefore(word: ProtectorWord | null, wornDb: number, other: AtEar): boolean {
+  const rank = rankOf(word);
+  const otherRank = rankOf(other.word);
+  if (rank !== otherRank) return rank < otherRank;
+  return word === "too-much" ? wornDb < other.wornDb : wornDb > other.wornDb;
+}
+
+const rankOf = (word: ProtectorWord | null): number =>
+  word === "too-little" ? 0 : word === "too-much" ? 1 : 2;
+
+function targetOf({ adequacy, targetDb }: Rule, personalTargetDb: number | null): number | null {
+  const ofRule = adequacy === "not-stated" ? null : targetDb;
+  if (ofRule === null) return personalTargetDb;
+  return personalTargetDb === null ? ofRule : Math.min(ofRule, personalTargetDb);
+}
+
+function prepare(offer: Offer, rule: Rule): Prepared {
+  const { inner, outer, combinationBands } = offer;
+  if (outer === null) {
+    const { bands, hDb, mDb, lDb } = inner;
+    return {
+      offer,
+      lossFactors: bands && factorsOf(assumedAttenuationDb(bands, rule.alpha)),
+      lowFactors: bands && factorsOf(assumedAttenuationDb(bands, LOWER_CONFIDENCE_ALPHA)),
+      hml: hDb === null || mDb === null || lDb === null ? null : { hDb, mDb, lDb },
+      snrDb: inner.snrDb,
+      usReductionDb: usReductionDb(inner, rule),
+      usRatingDb: rule.derating === "none" ? inner.usRatingDb : null,
+      percentileDb: inner.percentile?.mostDb ?? null,
+      slc80Db: inner.slc80Db,
+    };
+  }
+  const assumedDb = combinationBands && combinationAttenuationDb(combinationBands, rule.alpha);
+  const [first, second] = [usReductionDb(inner, rule), usReductionDb(outer, rule)];
+  const hasRatings = first !== null && second !== null && rule.double === "better-plus-5";
+  return {
+    offer,
+    lossFactors: assumedDb && factorsOf(assumedDb),
+    lowFactors:
+      combinationBands &&
+      factorsOf(combinationAttenuationDb(combinationBands, LOWER_CONFIDENCE_ALPHA)),
+    hml: assumedDb && hmlOfBandsDb(assumedDb),
+    snrDb: assumedDb && snrOfBandsDb(assumedDb),
+    usReductionDb: hasRatings ? doubleAttenuationDb(first, second) : null,
+    usRatingDb:
+      hasRatings && rule.derating === "none"
+        ? doubleAttenuationDb(inner.usRatingDb!, outer.usRatingDb!)
+        : null,
+    percentileDb: null,
+    slc80Db: null,
+  };
+}
+
+function usReductionDb(data: ProtectorData, rule: Rule): number | null {
+  return data.usRatingDb === null
+    ? null
+    : deratedAttenuationDb(data.usRatingDb, derateType(data.kind), DERATINGS[rule.derating]);
+}
+
+function factorsOf(attenuationDb: OctaveBandValues): Float64Array {
+  return Float64Array.from(attenuationDb, (bandDb) =>
+    bandDb === null ? Number.NaN : 10 ** (-bandDb / 10),
+  );
+}
+
+function toNoise({ level, durationMin }: Wearer["noises"][number]): Noise {
+  const { octaveBandsDb, levelDb, lcMinusLaDb: statedLcLaDb } = level;
+  const powers =
+    octaveBandsDb &&
+    Float64Array.from(octaveBandsDb, (bandDb, band) =>
+      bandDb === null ? Number.NaN : 10 ** ((bandDb + A_WEIGHTING_DB[band]!) / 10),
+    );
+  return { levelDb, durationMin, powers, lcLaDb: lcMinusLaDb(level), statedLcLaDb };
+}
+
+/** What the rule's governing method takes off, and what it does with lower confidence, dB; null: none of them can say. */
+function reductionDb(
+  prepared: Prepared,
+  noise: Noise,
+  rule: Rule,
+  fit: OwnFit | null,
+): { reductionDb: number; lowReductionDb: number } | null {
+  if (rule.methods.length === 0) return null;
+  if (fit !== null && rule.ownFit === "replaces")
+    return { reductionDb: fit.parDb, lowReductionDb: fit.parDb };
+  for (const method of rule.methods) {
+    const found = byMethodDb(prepared, noise, method, fit);
+    if (found === null) continue;
+    const allowanceDb = method === "own-fit" ? 0 : rule.allowanceDb;
+    const label = found - allowanceDb;
+    const low =
+      method === "octave-band"
+        ? bandReductionDb(noise.powers!, prepared.lowFactors!) - allowanceDb
+        : label;
+    return fit === null
+      ? { reductionDb: label, lowReductionDb: low }
+      : {
+          reductionDb: Math.min(Math.max(0, label), fit.parDb),
+          lowReductionDb: Math.min(Math.max(0, low), fit.parDb),
+        };
+  }
+  return null;
+}
+
+function byMethodDb(
+  prepared: Prepared,
+  { powers, lcLaDb, statedLcLaDb }: Noise,
+  method: AttenuationMethod,
+  fit: OwnFit | null,
+): number | null {
+  const offC = (ratingDb: number | null) =>
+    ratingDb === null || lcLaDb === null ? null : ratingDb - lcLaDb;
+  switch (method) {
+    case "octave-band":
+      return powers === null || prepared.lossFactors === null
+        ? null
+        : bandReductionDb(powers, prepared.lossFactors);
+    case "hml": {
+      const { hml } = prepared;
+      return hml === null || lcLaDb === null
+        ? null
+        : hmlReductionDb(hml.hDb, hml.mDb, hml.lDb, lcLaDb);
+    }
+    case "snr":
+      return offC(prepared.snrDb);
+    case "slc80":
+      return offC(prepared.slc80Db);
+    case "us-single-number":
+      return prepared.usRatingDb !== null && statedLcLaDb !== null
+        ? prepared.usRatingDb - statedLcLaDb
+        : prepared.usReductionDb;
+    case "percentile":
+      return prepared.percentileDb;
+    case "own-fit":
+      return fit?.parDb ?? null;
+  }
+}
+
+/** The sum without the protector over that behind it, over the bands that both have. */
+function bandReductionDb(powers: Float64Array, factors: Float64Array): number {
+  let outside = 0;
+  let behind = 0;
+  for (let band = 0; band < OCTAVE_BANDS_HZ.length; band++) {
+    const power = powers[band]!;
+    const left = power * factors[band]!;
+    if (Number.isNaN(left)) continue;
+    outside += power;
+    behind += left;
+  }
+  return 10 * Math.log10(outside / behind);
+}

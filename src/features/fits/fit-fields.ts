@@ -1,0 +1,40 @@
+import { z } from "zod";
+import { FIT_METHODS, type FitFacts, FitMethod } from "../../../shared/schemas/fit";
+import type { Typed } from "../../components/number-input";
+import { MOST_TRIALS } from "./trial-cells";
+
+/** The trials of an ear as they stand in cells, some of them empty. */
+const Trials = z
+  .array(z.number().min(-20).max(80).nullable())
+  .max(MOST_TRIALS)
+  .transform((trials) => trials.filter((trial) => trial !== null));
+
+/** A field that was emptied states none. */
+export const SizeField = z
+  .string()
+  .trim()
+  .max(20)
+  .nullable()
+  .transform((size) => size || null);
+
+/** How a fit was tested and what came of it: the same at the desk and in a correction. */
+export const FitFields = z.object({
+  size: SizeField,
+  method: FitMethod,
+  methodSdDb: z.number().min(0).max(20),
+  leftDb: Trials,
+  rightDb: Trials,
+  note: z.string().trim().max(10_000),
+});
+
+/** Microphones at the cup have a page of their own. */
+export const DESK_METHODS = FIT_METHODS.filter((method) => method !== "two-microphones");
+
+/** The figures among what is typed. */
+export const numbersIn = (values: unknown): number[] =>
+  (Array.isArray(values) ? (values as Typed[]) : []).filter((value) => typeof value === "number");
+
+export const factsOf = (
+  { leftDb, rightDb, methodSdDb }: Pick<FitFacts, "leftDb" | "rightDb" | "methodSdDb">,
+  bands: FitFacts["bands"] = null,
+): FitFacts => ({ leftDb, rightDb, methodSdDb, bands });

@@ -1,0 +1,81 @@
+import { useLingui } from "@lingui/react";
+import { fitRating } from "../../../shared/acoustics/protection/fit-rating";
+import { formatLevel } from "../../../shared/format/level";
+import { Status } from "../../components/status";
+import { useLocale } from "../../lib/i18n";
+import { FitScale } from "./fit-scale";
+import { passWord } from "./fit-words";
+
+/** What the trials typed so far come to, beside what the noise asks for. */
+export function FitRatingLine({
+  leftDb,
+  rightDb,
+  methodSdDb,
+  confidencePct,
+  needDb,
+}: {
+  leftDb: readonly number[];
+  rightDb: readonly number[];
+  methodSdDb: number;
+  confidencePct: number;
+  needDb: number | null;
+}) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const { rating, refusal } = fitRating({ leftDb, rightDb, methodSdDb, confidencePct, needDb });
+  if (refusal?.code === "above-bone-conduction")
+    return (
+      <p className="field-error" role="alert">
+        {i18n.t(
+          "{found} dB is more than an ear can have: above {limit} dB sound comes through the skull. Look at the trials again.",
+          {
+            found: formatLevel(refusal.foundDb, locale),
+            limit: formatLevel(refusal.limitDb, locale),
+          },
+        )}
+      </p>
+    );
+  if (!rating)
+    return (
+      <div className="fit-rating">
+        <p className="not-assessed">{i18n.t("Type what each trial took off.")}</p>
+        <FitScale ticksDb={[]} uprightDb={needDb} />
+      </div>
+    );
+  const { left, right, weakerEar, parDb, isOneEar, hasSingleTrial, hasPassed } = rating;
+  const ears = [left, right].flatMap((ear) => (ear ? [ear.parDb] : []));
+  return (
+    <div className="fit-rating">
+      <Status>
+        <span className="fit-par">
+          {i18n.t("PAR {par} dB", { par: formatLevel(parDb, locale) })}
+        </span>{" "}
+        <b className={hasPassed === false ? "reversed" : "fit-pass"}>{passWord(i18n, hasPassed)}</b>
+      </Status>
+      <p>
+        {isOneEar
+          ? weakerEar === "left"
+            ? i18n.t("Left ear only, at {pct} % confidence.", { pct: confidencePct })
+            : i18n.t("Right ear only, at {pct} % confidence.", { pct: confidencePct })
+          : weakerEar === "left"
+            ? i18n.t("The weaker ear is the left one, at {pct} % confidence.", {
+                pct: confidencePct,
+              })
+            : i18n.t("The weaker ear is the right one, at {pct} % confidence.", {
+                pct: confidencePct,
+              })}{" "}
+        {left && i18n.t("Left {level}.", { level: formatLevel(left.parDb, locale) })}{" "}
+        {right && i18n.t("Right {level}.", { level: formatLevel(right.parDb, locale) })}{" "}
+        {needDb !== null && i18n.t("Needed {need}.", { need: formatLevel(needDb, locale) })}
+      </p>
+      <FitScale ticksDb={ears} uprightDb={needDb} />
+      {hasSingleTrial && (
+        <p className="field-note">
+          {i18n.t(
+            "A single trial says nothing of how the next one would sit. Two or more are better.",
+          )}
+        </p>
+      )}
+    </div>
+  );
+}

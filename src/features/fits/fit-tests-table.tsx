@@ -1,0 +1,142 @@
+import { useLingui } from "@lingui/react";
+import type { ReactNode } from "react";
+import { formatShortDate } from "../../../shared/format/date";
+import { formatLevel } from "../../../shared/format/level";
+import type { FitTestView } from "../../../shared/schemas/fit";
+import { type DataColumn, DataTable, type DataTableProps } from "../../components/data-table";
+import { TextLink } from "../../components/link";
+import { useLocale } from "../../lib/i18n";
+import { paths } from "../../paths";
+import { fitMethodWord, outcomeWord, passWord } from "./fit-words";
+
+/** Fits by date: who, which device, what came off, and whether that was enough. */
+export function FitTestsTable({
+  hidesWorker = false,
+  actions,
+  ...table
+}: {
+  hidesWorker?: boolean;
+  /** What can be done with a row; nothing where there is none. */
+  actions?: (test: FitTestView) => ReactNode;
+} & Pick<
+  DataTableProps<FitTestView>,
+  "rows" | "state" | "error" | "onRetry" | "more" | "empty" | "isSelected"
+>) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const device: DataColumn<FitTestView> = {
+    id: "device",
+    head: i18n.t("Protector"),
+    isRowHead: hidesWorker,
+    cell: ({ modelId, modelName, size }) => (
+      <span className="two-lines">
+        <TextLink className="is-quiet is-name" to={paths.protector(modelId)}>
+          {modelName}
+        </TextLink>
+        {size !== null && <span className="beneath">{i18n.t("size {size}", { size })}</span>}
+      </span>
+    ),
+  };
+  const columns: DataColumn<FitTestView>[] = [
+    ...(hidesWorker
+      ? []
+      : [
+          {
+            id: "worker",
+            head: i18n.t("Worker"),
+            isRowHead: true,
+            cell: ({ workerId, workerName, employeeNumber }) => (
+              <span className="two-lines">
+                <TextLink className="is-quiet is-name" to={paths.fittingOf(workerId)}>
+                  {workerName}
+                </TextLink>
+                <span className="beneath">{employeeNumber}</span>
+              </span>
+            ),
+          } satisfies DataColumn<FitTestView>,
+        ]),
+    device,
+    {
+      id: "date",
+      head: i18n.t("Tested"),
+      cell: ({ testedOn, method }) => (
+        <span className="two-lines">
+          {formatShortDate(testedOn, locale)}
+          <span className="beneath">{fitMethodWord(i18n, method)}</span>
+        </span>
+      ),
+    },
+    {
+      id: "ears",
+      head: i18n.t("Left, right"),
+      unit: "dB",
+      kind: "figure",
+      hidesOnPhone: true,
+      cell: ({ leftDb, rightDb }) =>
+        `${formatLevel(leftDb, locale)} ${formatLevel(rightDb, locale)}`,
+    },
+    {
+      id: "par",
+      head: i18n.t("PAR"),
+      unit: "dB",
+      kind: "figure",
+      cell: ({ parDb, confidencePct, isVoid }) => (
+        <span className="two-lines">
+          {isVoid ? <s>{formatLevel(parDb, locale)}</s> : <b>{formatLevel(parDb, locale)}</b>}
+          <span className="beneath">{i18n.t("at {pct} %", { pct: confidencePct })}</span>
+        </span>
+      ),
+    },
+    {
+      id: "need",
+      head: i18n.t("Needed"),
+      unit: "dB",
+      kind: "figure",
+      cell: ({ needDb }) => formatLevel(needDb, locale),
+    },
+    {
+      id: "word",
+      head: i18n.t("What it says"),
+      cell: (test) => (
+        <span className="two-lines">
+          <span className={test.hasPassed === false && !test.isVoid ? "is-fault" : undefined}>
+            {test.isVoid ? "–" : passWord(i18n, test.hasPassed)}
+          </span>
+          <span className="beneath">
+            {[
+              outcomeWord(i18n, test),
+              test.activePassed !== null &&
+                (test.activePassed
+                  ? i18n.t("active part passed")
+                  : i18n.t("active part not passed")),
+              test.dueOn !== null &&
+                i18n.t("again by {date}", { date: formatShortDate(test.dueOn, locale) }),
+            ]
+              .filter(Boolean)
+              .join(", ")}
+          </span>
+        </span>
+      ),
+    },
+    ...(actions
+      ? [
+          {
+            id: "action",
+            head: <span className="sr-only">{i18n.t("Change")}</span>,
+            kind: "right",
+            cell: (test: FitTestView) => <span className="note-links is-end">{actions(test)}</span>,
+          } satisfies DataColumn<FitTestView>,
+        ]
+      : []),
+  ];
+  return (
+    <DataTable<FitTestView>
+      {...table}
+      caption={i18n.t("Fit tests, the latest first")}
+      rowKey={({ id }) => id}
+      columns={columns}
+      isTwoLine
+      stacksOnPhone
+    />
+  );
+}

@@ -1,0 +1,137 @@
+import type { I18n } from "@lingui/core";
+import type {
+  Candidate,
+  FitMethod,
+  FitTestView,
+  Gear,
+  IssueView,
+  RefusalInput,
+} from "../../../shared/schemas/fit";
+
+export function fitMethodWord(i18n: I18n, method: FitMethod): string {
+  switch (method) {
+    case "psychophysical":
+      return i18n.t("Heard thresholds");
+    case "real-ear-microphones":
+      return i18n.t("Microphones in the real ear");
+    case "two-microphones":
+      return i18n.t("Two microphones");
+  }
+}
+
+/** Passed, not passed, or nothing to pass. */
+export function passWord(i18n: I18n, hasPassed: boolean | null): string {
+  if (hasPassed === null) return i18n.t("Nothing to pass");
+  return hasPassed ? i18n.t("Fits") : i18n.t("Does not fit");
+}
+
+export function outcomeWord(i18n: I18n, { isVoid, outcome }: FitTestView): string {
+  if (isVoid) return i18n.t("struck out");
+  return outcome === "issued" ? i18n.t("issued") : i18n.t("tried");
+}
+
+export function endedWord(i18n: I18n, how: NonNullable<IssueView["endedHow"]>): string {
+  switch (how) {
+    case "returned":
+      return i18n.t("brought back");
+    case "lost":
+      return i18n.t("lost");
+    case "damaged":
+      return i18n.t("broken");
+    case "replaced":
+      return i18n.t("replaced");
+  }
+}
+
+export function refusalWord(i18n: I18n, kind: RefusalInput["kind"]): string {
+  switch (kind) {
+    case "refused":
+      return i18n.t("Refused it");
+    case "not-worn":
+      return i18n.t("Did not wear it");
+    case "cannot-wear":
+      return i18n.t("Cannot wear it");
+  }
+}
+
+/** Which figure of the label stands for what most people get. */
+export function labelWord(i18n: I18n, method: string | null): string {
+  switch (method) {
+    case "percentile":
+      return i18n.t("percentile rating, most users");
+    case "hml":
+      return i18n.t("M");
+    case "us-single-number":
+      return i18n.t("US number less 7");
+    case "snr":
+      return i18n.t("SNR");
+    default:
+      return i18n.t("nothing comparable");
+  }
+}
+
+export function gearWord(i18n: I18n, gear: Gear): string {
+  switch (gear) {
+    case "helmet":
+      return i18n.t("helmet");
+    case "glasses":
+      return i18n.t("glasses");
+    case "respirator":
+      return i18n.t("respirator");
+  }
+}
+
+/** Why a device is out of the question. */
+export function exclusionWord(
+  i18n: I18n,
+  { code, gear }: NonNullable<Candidate["excludedBy"]>,
+): string {
+  switch (code) {
+    case "gear":
+      return gear === null
+        ? i18n.t("not with what is worn beside it")
+        : i18n.t("not with {gear}", { gear: gearWord(i18n, gear) });
+    case "no-data":
+      return i18n.t("its data say nothing of this noise");
+    case "archived":
+      return i18n.t("no longer in use");
+  }
+}
+
+/** The comparison that put a candidate behind the one before it. */
+export function decidedWord(i18n: I18n, decidedBy: Candidate["decidedBy"]): string {
+  switch (decidedBy) {
+    case "first":
+      return i18n.t("suits best");
+    case "compatibility":
+      return i18n.t("by what is worn with it");
+    case "adequacy":
+      return i18n.t("by its word while worn");
+    case "margin":
+      return i18n.t("by the margin at the ear");
+    case "fit":
+      return i18n.t("by own fit");
+    case "battery":
+      return i18n.t("by the battery");
+    case "stock":
+      return i18n.t("by the stock");
+    case "name":
+      return i18n.t("alike, by name");
+  }
+}
+
+/** Why no need is stated, or what it rests on. */
+export function needReasonText(i18n: I18n, reason: string | null): string | null {
+  switch (reason) {
+    case "no-noise":
+      return i18n.t(
+        "No noise of this worker is known: no day is on record, and the job has no nominal day.",
+      );
+    case "not-stated":
+      return i18n.t("The rules of the site state no target at the ear.");
+    case "nominal-day":
+      return i18n.t("By the job’s nominal day; no own day is on record yet.");
+    default:
+      return null;
+  }
+}

@@ -1,0 +1,217 @@
+import { useLingui } from "@lingui/react";
+import { useQuery } from "@tanstack/react-query";
+import { useController } from "react-hook-form";
+import { z } from "zod";
+import { Reason } from "../../../shared/schemas/common";
+import type { FitTestView, FittingDesk, IssueView } from "../../../shared/schemas/fit";
+import { Button } from "../../components/button";
+import {
+  CheckField,
+  DateField,
+  Field,
+  Form,
+  FormActions,
+  SelectField,
+  SubmitButton,
+  TextAreaField,
+  useSchemaForm,
+} from "../../components/form";
+import { FormProblem } from "../../components/form-problem";
+import { useChangeKey } from "../../lib/change-key";
+import { useOneAtATime } from "../../lib/one-at-a-time";
+import { references } from "../../lib/references";
+import { showFitIssuesOn } from "./fit-issues";
+import { useIssue } from "./queries";
+
+const IssueFields = z.object({
+  use: z.string(),
+  offeredModelIds: z.array(z.uuid()).min(1).max(40),
+  wasInstructed: z.boolean(),
+  isAcknowledged: z.boolean(),
+  /** A field that was emptied states none. */
+  reason: z
+    .string()
+    .transform((reason) => reason.trim() || null)
+    .pipe(Reason.nullable()),
+  issuedOn: z.iso.date(),
+});
+
+const EVERYWHERE = "everywhere";
+
+/** What goes out: a device, and the fit that it goes out on where one was tested. */
+export interface ToIssue {
+  readonly modelId: string;
+  readonly size: string | null;
+  readonly fit: FitTestView | null;
+}
+
+/** Hands a device out, in one act: for which use, what was on offer, that its wearing was shown and that it was received. */
+export function IssueForm({
+  desk,
+  device,
+  today,
+  onIssued,
+  onLeave,
+}: {
+  desk: FittingDesk;
+  device: ToIssue;
+  today: string;
+  onIssued: (issue: IssueView, stockLeft: number | null) => void;
+  onLeave: () => void;
+}) {
+  const { i18n } = useLingui();
+  const issue = useIssue(desk.worker.id);
+  const changeKey = useChangeKey();
+  const { begin, end } = useOneAtATime();
+  const { siteId } = desk.worker;
+  const tasks = useQuery(references.tasks(siteId));
+  const areas = useQuery(references.areas(siteId));
+  const candidate = desk.candidates.find(({ modelId }) => modelId === device.modelId);
+  const tried = desk.tests
+    .filter(({ isVoid, testedOn }) => !isVoid && testedOn === today)
+    .map(({ modelId }) => modelId);
+  const form = useSchemaForm(IssueFields, {
+    mode: "onSubmit",
+    keepAs: `issue ${device.modelId}`,
+    defaultValues: {
+      use: EVERYWHERE,
+      offeredModelIds: [...new Set([device.modelId, ...tried])],
+      wasInstructed: false,
+      isAcknowledged: false,
+      reason: "",
+      issuedOn: today,
+    },
+  });
+  const offered = form.watch("offeredModelIds");
+  const kinds = new Set(
+    desk.candidates.filter(({ modelId }) => offered.includes(modelId)).map(({ kind }) => kind),
+  );
+  const isOneKind = kinds.size < 2;
+  const stock = candidate?.stock ?? null;
+  const asksWhy = isOneKind || (stock !== null && stock < 1);
+  // The server counts the stock by size; once it has asked, the field stays for what is typed.
+  const hasAsked = form.formState.errors.reason !== undefined || form.watch("reason") !== "";
+  const uses = [
+    { value: EVERYWHERE, label: i18n.t("everywhere in noise") },
+    ...(areas.data?.rows ?? [])
+      .filter(({ isArchived }) => !isArchived)
+      .map(({ id, name }) => ({
+        value: `area ${id}`,
+        label: i18n.t("in the area {name}", { name }),
+      })),
+    ...(tasks.data?.rows ?? [])
+      .filter(({ isArchived }) => !isArchived)
+      .map(({ id, name }) => ({
+        value: `task ${id}`,
+        label: i18n.t("in the task {name}", { name }),
+      })),
+  ];
+
+  return (
+    <Form
+      className="issue-form"
+      aria-label={i18n.t("Issue {protector}", { protector: candidate?.name ?? "" })}
+      onSubmit={form.handleSubmit(({ use, ...facts }) => {
+        if (!begin()) return;
+        const [what, id = null] = use.split(" ");
+        const body = {
+          ...facts,
+          modelId: device.modelId,
+          size: device.size,
+          fitTestId: device.fit?.id ?? null,
+          taskId: what === "task" ? id : null,
+          areaId: what === "area" ? id : null,
+        };
+        issue.mutate(
+          { body, key: changeKey.keyFor(body) },
+          {
+            // It is not let through again: what went out went out.
+            onSuccess: (view) => onIssued(view, stock === null ? null : stock - 1),
+            onError: (error) => {
+              end();
+              showFitIssuesOn(form, i18n)(error);
+            },
+          },
+        );
+      })}
+    >
+      <SelectField form={form} name="use" label={i18n.t("Worn")} choices={uses} />
+      <OfferedField form={form} desk={desk} deviceId={device.modelId} />
+      <CheckField
+        form={form}
+        name="wasInstructed"
+        label={i18n.t("Instruction")}
+        text={i18n.t("How to put it on, wear it and care for it was shown")}
+      />
+      <CheckField
+        form={form}
+        name="isAcknowledged"
+        label={i18n.t("Receipt")}
+        text={i18n.t("The worker says that it was received, free of charge")}
+      />
+      {(asksWhy || hasAsked) && (
+        <TextAreaField
+          form={form}
+          name="reason"
+          label={i18n.t("All the same, because")}
+          rows={2}
+          note={
+            isOneKind
+              ? i18n.t("Only one kind is on offer. Only officers read this.")
+              : i18n.t("None is in stock. Only officers read this.")
+          }
+        />
+      )}
+      <DateField form={form} name="issuedOn" label={i18n.t("Issued")} />
+      <FormProblem error={issue.error} />
+      <FormActions>
+        <SubmitButton isBusy={issue.isPending}>{i18n.t("Issue this")}</SubmitButton>
+        <Button onClick={onLeave}>{i18n.t("Leave it")}</Button>
+      </FormActions>
+    </Form>
+  );
+}
+
+/** More than one kind has to be on offer: what was laid out on the desk. */
+function OfferedField({
+  form,
+  desk,
+  deviceId,
+}: {
+  form: ReturnType<typeof useSchemaForm<typeof IssueFields>>;
+  desk: FittingDesk;
+  deviceId: string;
+}) {
+  const { i18n } = useLingui();
+  const { field, fieldState } = useController({ control: form.control, name: "offeredModelIds" });
+  const chosen = field.value;
+  const choices = desk.candidates.filter(
+    ({ modelId, excludedBy }) => excludedBy === null || chosen.includes(modelId),
+  );
+  return (
+    <Field label={i18n.t("On offer were")} isGroup error={fieldState.error?.message}>
+      {() => (
+        <span className="offered">
+          {choices.map(({ modelId, name }, place) => (
+            <label key={modelId} className="choice">
+              <input
+                type="checkbox"
+                ref={place === 0 ? field.ref : undefined}
+                checked={chosen.includes(modelId)}
+                disabled={modelId === deviceId}
+                onChange={(event) =>
+                  field.onChange(
+                    event.target.checked
+                      ? [...chosen, modelId]
+                      : chosen.filter((id) => id !== modelId),
+                  )
+                }
+              />
+              <span>{name}</span>
+            </label>
+          ))}
+        </span>
+      )}
+    </Field>
+  );
+}

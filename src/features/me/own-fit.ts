@@ -1,0 +1,32 @@
+import type { I18n } from "@lingui/core";
+import { formatDate } from "../../../shared/format/date";
+import type { Locale } from "../../../shared/i18n/index";
+import type { FitTestView } from "../../../shared/schemas/fit";
+import type { OwnProtector } from "./own-protectors";
+
+/** The latest test of this protector that stands; another size says nothing of this one. */
+export function fitOfOwn(
+  tests: readonly FitTestView[],
+  { innerModelId, outerName, size }: OwnProtector,
+): FitTestView | null {
+  if (outerName !== null) return null;
+  return (
+    tests.find(
+      (test) =>
+        test.modelId === innerModelId &&
+        !test.isVoid &&
+        test.parDb !== null &&
+        (size === null || test.size === null || test.size === size),
+    ) ?? null
+  );
+}
+
+/** Whether it fits, in plain words. */
+export function ownFitSentence(i18n: I18n, locale: Locale, test: FitTestView | null): string {
+  if (test === null) return i18n.t("Nobody has tested yet whether it fits you.");
+  const date = formatDate(test.testedOn, locale);
+  if (test.hasPassed === null) return i18n.t("Tested on you on {date}.", { date });
+  return test.hasPassed
+    ? i18n.t("Fits you, tested on {date}.", { date })
+    : i18n.t("Does not fit you well enough, tested on {date}. Ask for another.", { date });
+}

@@ -1,0 +1,355 @@
+import { QueryClientProvider } from "@tanstack/react-query";
+import { render, screen, waitFor, within } from "@testing-library/react";
+import userEvent from "@testing-library/user-event";
+import { MemoryRouter, Route, Routes } from "react-router-dom";
+import { beforeEach, describe, expect, test, vi } from "vitest";
+import {
+  FitTestView,
+  FittingDesk,
+  FittingFound,
+  IssuePage,
+  IssueView,
+} from "../../shared/schemas/fit";
+import { ProtectorList } from "../../shared/schemas/protector";
+import { AreaList } from "../../shared/schemas/site";
+import { TaskList } from "../../shared/schemas/task";
+import { sessionQuery } from "../features/session/session";
+import { createQueryClient } from "../lib/query-client";
+import { TestLanguage } from "../lib/test-i18n";
+import { paths } from "../paths";
+import { Component } from "./fitting-page";
+
+const id = (last: number) => `00000000-0000-4000-8000-0000000000${String(last).padStart(2, "0")}`;
+const [site, worker, muff, plug] = [id(1), id(2), id(3), id(4)];
+
+const candidate = (modelId: string, name: string, kind: string, more: object = {}) => ({
+  modelId,
+  outerModelId: null,
+  name,
+  kind,
+  excludedBy: null,
+  word: "good" as const,
+  wornDb: 77.6,
+  marginDb: 5.2,
+  lastFit: null,
+  batteryMin: null,
+  batteryLasts: null,
+  stock: 12,
+  decidedBy: "first" as const,
+  ...more,
+});
+const desk = (overrides: Partial<FittingDesk> = {}): FittingDesk => ({
+  worker: {
+    id: worker,
+    siteId: site,
+    siteName: "Ostmere works",
+    name: "D. Tavernor",
+    employeeNumber: "4417",
+    jobName: "Fettler",
+    wornGear: [],
+    personalTargetDb: null,
+  },
+  ruleSetKey: "uk-2005",
+  ruleSetVersion: 1,
+  need: {
+    needDb: 13,
+    outsideDb: 98,
+    targetDb: 85,
+    taskName: "Chipping",
+    mostDb: 28,
+    reason: null,
+  },
+  policy: { confidencePct: 84, everyMonths: 12, afterFailDays: 14 },
+  candidates: [
+    candidate(muff, "Fenmuff", "earmuff"),
+    candidate(plug, "Alder foam", "foam-plug", { decidedBy: "margin" }),
+  ],
+  tests: [],
+  issued: [],
+  can: { test: true, issue: true },
+  ...overrides,
+});
+const tested = (facts: FitTestView["facts"], more: Partial<FitTestView> = {}): FitTestView => ({
+  id: id(7),
+  revision: 1,
+  siteId: site,
+  workerId: worker,
+  workerName: "D. Tavernor",
+  employeeNumber: "4417",
+  modelId: muff,
+  modelName: "Fenmuff",
+  testedOn: "2026-12-01",
+  method: "psychophysical",
+  size: null,
+  facts,
+  confidencePct: 84,
+  needDb: 13,
+  note: "",
+  leftDb: 20,
+  rightDb: 18,
+  parDb: 18,
+  hasPassed: true,
+  activePassed: null,
+  outcome: "tried",
+  dueOn: null,
+  isVoid: false,
+  authorName: "S. Ferrand",
+  can: { change: true },
+  ...more,
+});
+const issued: IssueView = {
+  id: id(8),
+  revision: 1,
+  siteId: site,
+  workerId: worker,
+  workerName: "D. Tavernor",
+  employeeNumber: "4417",
+  modelId: muff,
+  modelName: "Fenmuff",
+  size: null,
+  useName: null,
+  issuedOn: "2026-12-01",
+  offered: ["Alder foam", "Fenmuff"],
+  wasInstructed: true,
+  reason: null,
+  acknowledgedHow: "in-person",
+  endedOn: null,
+  endedHow: null,
+  parDb: 18,
+  authorName: "S. Ferrand",
+  can: { end: true, acknowledge: false },
+};
+
+interface Sent {
+  path: string;
+  body: Record<string, unknown>;
+  key: string | null;
+}
+let sent: Sent[];
+let at: FittingDesk;
+let answerIssue: () => { status: number; body: object };
+
+beforeEach(() => {
+  sent = [];
+  at = desk();
+  answerIssue = () => ({ status: 201, body: IssueView.parse(issued) });
+  sessionStorage.clear();
+  vi.stubGlobal("fetch", async (path: string, init: RequestInit = {}) => {
+    if (init.method === "GET") return Response.json(read(path));
+    const body = JSON.parse(String(init.body));
+    sent.push({ path, body, key: new Headers(init.headers).get("idempotency-key") });
+    if (path.endsWith("/fit-tests")) {
+      const test = tested(body.facts, { modelId: body.modelId });
+      at = desk({ tests: [test] });
+      return Response.json(FitTestView.parse(test), { status: 201 });
+    }
+    const { status, body: answer } = answerIssue();
+    return Response.json(answer, { status });
+  });
+  return () => vi.unstubAllGlobals();
+});
+
+function read(path: string): object {
+  const { pathname, searchParams } = new URL(path, "http://localhost");
+  const found = { id: worker, name: "D. Tavernor", employeeNumber: "4417", siteName: "Ostmere" };
+  if (pathname === "/api/fitting/lookup") {
+    const asked = searchParams.get("employeeNumber");
+    const rows =
+      asked === "4417"
+        ? [{ ...found, isExact: true }]
+        : asked === "tav"
+          ? [
+              { ...found, isExact: false },
+              { ...found, id: id(9), name: "A. Tavistock", isExact: false },
+            ]
+          : [];
+    return FittingFound.parse({ rows });
+  }
+  if (pathname.endsWith("/fitting")) return FittingDesk.parse(at);
+  if (pathname === "/api/issues") return IssuePage.parse({ rows: [], next: null });
+  if (pathname === "/api/tasks") return TaskList.parse({ rows: [] });
+  if (pathname === "/api/areas") return AreaList.parse({ rows: [] });
+  return ProtectorList.parse({ rows: [] });
+}
+
+function open(address: string = paths.fitting) {
+  const client = createQueryClient();
+  client.setQueryData(sessionQuery.queryKey, {
+    pendingName: null,
+    user: {
+      id: id(20),
+      name: "S. Ferrand",
+      email: null,
+      language: "en",
+      workerId: null,
+      roles: ["officer"],
+      organizationName: "Ostmere",
+      sites: [{ id: site, name: "Ostmere works", timeZone: "Europe/London", language: "en" }],
+    },
+  });
+  return render(
+    <TestLanguage>
+      <QueryClientProvider client={client}>
+        <MemoryRouter initialEntries={[address]}>
+          <Routes>
+            <Route path={paths.fitting} element={<Component />} />
+            <Route path={paths.fittingOf(":workerId")} element={<Component />} />
+          </Routes>
+        </MemoryRouter>
+      </QueryClientProvider>
+    </TestLanguage>,
+  );
+}
+
+const number = () => screen.getByLabelText("Employee number, or name");
+
+describe("the fitting desk", () => {
+  test("from the number to the next in the queue with the keyboard alone", async () => {
+    const user = userEvent.setup();
+    open();
+    expect(number()).toHaveFocus();
+    await user.keyboard("4417{Enter}");
+    expect(await screen.findByText("13.0 dB have to come off.")).toBeVisible();
+    const form = screen.getByRole("form", { name: "Test the fit" });
+    const left = within(form).getByRole("group", { name: "Left ear" });
+    await user.click(within(left).getByLabelText("Trial 1"));
+    await user.keyboard("24{Enter}22{Enter}26{Enter}{Enter}");
+    const right = within(form).getByRole("group", { name: "Right ear" });
+    expect(within(right).getByLabelText("Trial 1")).toHaveFocus();
+    await user.keyboard("21{Enter}23{Enter}");
+    // Right: mean 22, s = √2, u = √(1 + 9) = 3.1623; z(84 %) = 0.99446; 22 − 3.1447 = 18.9. Left: 24 − 3.19 = 20.8.
+    expect(within(form).getByText("PAR 18.9 dB")).toBeVisible();
+    expect(within(form).getByText("Fits")).toBeVisible();
+    expect(
+      within(form).getByText(/The weaker ear is the right one, at 84 % confidence/),
+    ).toBeVisible();
+    await user.keyboard("{Enter}");
+
+    const issue = await screen.findByRole("form", { name: "Issue Fenmuff" });
+    expect(sent[0]).toMatchObject({
+      path: `/api/workers/${worker}/fit-tests`,
+      body: {
+        modelId: muff,
+        needDb: 13,
+        confidencePct: 84,
+        facts: { leftDb: [24, 22, 26], rightDb: [21, 23], methodSdDb: 3 },
+      },
+    });
+    await waitFor(() => expect(within(issue).getByLabelText("Worn")).toHaveFocus());
+    // One kind only asks why; a second one on offer takes the question away.
+    expect(within(issue).getByLabelText("All the same, because")).toBeVisible();
+    await user.click(within(issue).getByLabelText("Alder foam"));
+    expect(within(issue).queryByLabelText("All the same, because")).toBeNull();
+    await user.click(within(issue).getByLabelText(/was shown/));
+    await user.click(within(issue).getByLabelText(/was received/));
+    await user.dblClick(within(issue).getByRole("button", { name: "Issue this" }));
+    expect(
+      await screen.findByText("Fenmuff is issued to D. Tavernor; 11 left in stock."),
+    ).toBeVisible();
+    expect(sent.filter(({ path }) => path.endsWith("/issues"))).toMatchObject([
+      {
+        body: {
+          modelId: muff,
+          fitTestId: id(7),
+          offeredModelIds: [muff, plug],
+          wasInstructed: true,
+          isAcknowledged: true,
+          reason: null,
+        },
+      },
+    ]);
+    expect(number()).toHaveFocus();
+    expect(number()).toHaveValue("");
+    expect(screen.queryByRole("form", { name: "Test the fit" })).toBeNull();
+  });
+
+  test("a name asks which one is meant, and a number that nobody has says so", async () => {
+    const user = userEvent.setup();
+    open();
+    await user.keyboard("999{Enter}");
+    expect(await screen.findByText("Nobody here has this number or name.")).toBeVisible();
+    await user.clear(number());
+    await user.type(number(), "tav{Enter}");
+    await user.click(await screen.findByRole("button", { name: "D. Tavernor" }));
+    expect(await screen.findByText("13.0 dB have to come off.")).toBeVisible();
+  });
+
+  test("a method brings its own uncertainty, marked as common practice, until one is typed", async () => {
+    const user = userEvent.setup();
+    open(paths.fittingOf(worker));
+    const form = await screen.findByRole("form", { name: "Test the fit" });
+    const sd = within(form).getByLabelText("Its own uncertainty");
+    expect(sd).toHaveValue("3");
+    expect(within(form).getByText(/common practice, no source/)).toBeVisible();
+    await user.selectOptions(within(form).getByLabelText("Tested by"), "real-ear-microphones");
+    expect(sd).toHaveValue("4");
+    await user.clear(sd);
+    await user.type(sd, "2.5");
+    await user.selectOptions(within(form).getByLabelText("Tested by"), "psychophysical");
+    expect(sd).toHaveValue("2.5");
+    expect(within(form).getByText(/as its maker states it/)).toBeVisible();
+  });
+
+  test("one ear, a fail and more than an ear can have are said at once", async () => {
+    const user = userEvent.setup();
+    open(paths.fittingOf(worker));
+    const form = await screen.findByRole("form", { name: "Test the fit" });
+    const left = within(form).getByRole("group", { name: "Left ear" });
+    await user.type(within(left).getByLabelText("Trial 1"), "14");
+    // A single trial: u is the method’s alone, 14 − 0.99446 · 3 = 11.0.
+    expect(within(form).getByText("PAR 11.0 dB")).toBeVisible();
+    expect(within(form).getByText("Does not fit")).toBeVisible();
+    expect(within(form).getByText(/Left ear only/)).toBeVisible();
+    expect(within(form).getByText(/single trial says nothing/)).toBeVisible();
+    await user.clear(within(left).getByLabelText("Trial 1"));
+    await user.type(within(left).getByLabelText("Trial 1"), "70");
+    expect(within(form).getByRole("alert")).toHaveTextContent(/more than an ear can have/);
+  });
+
+  test("nothing typed is lost over an error or a reload", async () => {
+    const user = userEvent.setup();
+    at = desk({ tests: [tested({ leftDb: [24], rightDb: [], methodSdDb: 3, bands: null })] });
+    answerIssue = () => ({
+      status: 422,
+      body: {
+        code: "invalid",
+        issues: [{ path: ["reason"], code: "none-in-stock", params: {} }],
+      },
+    });
+    const page = open(paths.fittingOf(worker));
+    const form = await screen.findByRole("form", { name: "Test the fit" });
+    const right = within(form).getByRole("group", { name: "Right ear" });
+    await user.type(within(right).getByLabelText("Trial 1"), "19.5");
+    await user.click(screen.getAllByRole("button", { name: "Issue Fenmuff" })[0] as HTMLElement);
+    const issue = await screen.findByRole("form", { name: "Issue Fenmuff" });
+    await user.click(within(issue).getByLabelText("Alder foam"));
+    await user.click(within(issue).getByLabelText(/was shown/));
+    await user.click(within(issue).getByRole("button", { name: "Issue this" }));
+    expect(await within(issue).findByText(/None of this size is in stock/)).toBeVisible();
+    expect(within(issue).getByLabelText(/was shown/)).toBeChecked();
+    await user.type(within(issue).getByLabelText("All the same, because"), "from the display");
+    answerIssue = () => ({ status: 201, body: IssueView.parse(issued) });
+    await user.click(within(issue).getByRole("button", { name: "Issue this" }));
+    await waitFor(() => expect(sent).toHaveLength(2));
+    expect(sent[1]?.body.reason).toBe("from the display");
+    expect(sent[1]?.key).not.toBe(sent[0]?.key);
+    page.unmount();
+  });
+
+  test("whose noise is not known is told so, and may be tested all the same", async () => {
+    at = desk({
+      need: {
+        needDb: null,
+        outsideDb: null,
+        targetDb: null,
+        taskName: null,
+        mostDb: null,
+        reason: "no-noise",
+      },
+    });
+    open(paths.fittingOf(worker));
+    expect(await screen.findByText("What this worker needs is not known.")).toBeVisible();
+    expect(screen.getByText(/No noise of this worker is known/)).toBeVisible();
+    expect(screen.getByRole("form", { name: "Test the fit" })).toBeVisible();
+  });
+});

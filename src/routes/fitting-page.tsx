@@ -1,0 +1,294 @@
+import { useLingui } from "@lingui/react";
+import { useInfiniteQuery, useQuery } from "@tanstack/react-query";
+import { useCallback, useEffect, useMemo, useRef, useState } from "react";
+import { useNavigate, useParams } from "react-router-dom";
+import { formatLevel, formatLimit } from "../../shared/format/level";
+import { ruleSetVersion } from "../../shared/rule-sets";
+import type { FittingDesk } from "../../shared/schemas/fit";
+import { localDate } from "../../shared/time/zone";
+import { Button } from "../components/button";
+import { Empty } from "../components/empty";
+import { Failed } from "../components/failed";
+import { TextButton, TextLink } from "../components/link";
+import { Folio, PageBody, PageHead, Section } from "../components/page";
+import { Status } from "../components/status";
+import { CandidatesTable } from "../features/fits/candidates-table";
+import { FitForm, type FitFormHandle } from "../features/fits/fit-form";
+import { FitTestActions } from "../features/fits/fit-test-actions";
+import { FitTestsTable } from "../features/fits/fit-tests-table";
+import { needReasonText } from "../features/fits/fit-words";
+import { IssueForm, type ToIssue } from "../features/fits/issue-form";
+import { IssuesTable } from "../features/fits/issues-table";
+import { NumberForm, type NumberFormHandle } from "../features/fits/number-form";
+import { fitQueries } from "../features/fits/queries";
+import { useUser } from "../features/session/session";
+import { useLocale } from "../lib/i18n";
+import { references } from "../lib/references";
+import { paths } from "../paths";
+import { ProtectorWays } from "./protector-frame";
+import "../styles/findings.css";
+import "../styles/fits.css";
+import "../styles/worker.css";
+
+/** The fitting desk: from the number of whoever stands there to the device that goes out, and on to the next. */
+export function Component() {
+  const { i18n } = useLingui();
+  const { workerId } = useParams();
+  const navigate = useNavigate();
+  const number = useRef<NumberFormHandle>(null);
+  const [said, setSaid] = useState<string | null>(null);
+  const desk = useQuery({ ...fitQueries.desk(workerId ?? ""), enabled: workerId !== undefined });
+  const governing = desk.data && ruleSetVersion(desk.data.ruleSetKey, desk.data.ruleSetVersion);
+  return (
+    <>
+      <PageBody>
+        <PageHead
+          way={<ProtectorWays />}
+          title={i18n.t("Fit and issue")}
+          lead={i18n.t("Who is it, what takes enough off on this worker, and that goes out.")}
+        />
+        <NumberForm
+          ref={number}
+          onFound={(id) => {
+            setSaid(null);
+            void navigate(paths.fittingOf(id));
+          }}
+        />
+        <p className="desk-said">
+          <Status>{said}</Status>
+        </p>
+        {workerId === undefined ? null : desk.error && !desk.data ? (
+          <Failed error={desk.error} onRetry={() => void desk.refetch()} />
+        ) : desk.data ? (
+          <AtDesk
+            key={desk.data.worker.id}
+            desk={desk.data}
+            onIssued={(sentence) => {
+              setSaid(sentence);
+              void navigate(paths.fitting);
+              number.current?.next();
+            }}
+          />
+        ) : (
+          <span className="loading-line" />
+        )}
+      </PageBody>
+      <Folio>
+        {governing &&
+          i18n.t("{title}, rule set version {version}.", {
+            title: i18n._(governing.title),
+            version: governing.version,
+          })}
+      </Folio>
+    </>
+  );
+}
+
+function AtDesk({ desk, onIssued }: { desk: FittingDesk; onIssued: (sentence: string) => void }) {
+  const { i18n } = useLingui();
+  const user = useUser();
+  const { worker, can } = desk;
+  const timeZone = user.sites.find(({ id }) => id === worker.siteId)?.timeZone ?? "UTC";
+  const today = localDate(new Date(), timeZone);
+  const form = useRef<FitFormHandle>(null);
+  const issueAt = useRef<HTMLDivElement>(null);
+  const [chosenId, setChosenId] = useState(desk.candidates[0]?.modelId ?? "");
+  const [toIssue, setToIssue] = useState<ToIssue | null>(null);
+  const protectors = useQuery(references.protectors());
+  const issues = useInfiniteQuery(fitQueries.issues({ workerId: worker.id, state: "open" }));
+  const sizes = useMemo(
+    () => new Map(protectors.data?.rows.map(({ id, data }) => [id, data.sizes] as const)),
+    [protectors.data],
+  );
+  const sizesOf = useCallback((modelId: string) => sizes.get(modelId) ?? [], [sizes]);
+
+  useEffect(() => {
+    if (toIssue) issueAt.current?.querySelector<HTMLElement>("select, input, textarea")?.focus();
+  }, [toIssue]);
+
+  return (
+    <div className="desk">
+      <h2 className="desk-who">
+        <TextLink className="is-quiet" to={paths.worker(worker.id)}>
+          {worker.name}
+        </TextLink>{" "}
+        <span className="beneath">
+          {[worker.employeeNumber, worker.jobName, worker.siteName].filter(Boolean).join(", ")}
+        </span>
+      </h2>
+      <Need desk={desk} />
+      <div className="desk-try">
+        {can.test && (
+          <Section title={i18n.t("Test the fit")} id="fit">
+            <FitForm
+              ref={form}
+              desk={desk}
+              today={today}
+              sizesOf={sizesOf}
+              onChoose={setChosenId}
+              onRecorded={(fit) => setToIssue({ modelId: fit.modelId, size: fit.size, fit })}
+            />
+            <p className="after-table">
+              <TextLink
+                to={`${paths.microphoneCheck(worker.id)}${chosenId === "" ? "" : `?model=${chosenId}`}`}
+              >
+                {i18n.t("Check with two microphones")}
+              </TextLink>
+            </p>
+          </Section>
+        )}
+        <Section title={i18n.t("What suits this noise")} id="candidates">
+          <CandidatesTable
+            candidates={desk.candidates}
+            chosenId={chosenId}
+            onTry={(modelId) => form.current?.choose(modelId)}
+          />
+        </Section>
+      </div>
+      {toIssue && can.issue && (
+        <Section
+          title={i18n.t("Issue {protector}", {
+            protector: [
+              desk.candidates.find(({ modelId }) => modelId === toIssue.modelId)?.name ?? "",
+              toIssue.size !== null && i18n.t("size {size}", { size: toIssue.size }),
+            ]
+              .filter(Boolean)
+              .join(", "),
+          })}
+          id="issue"
+        >
+          <OnWhichFit device={toIssue} />
+          <div ref={issueAt}>
+            <IssueForm
+              key={`${toIssue.modelId} ${toIssue.fit?.id ?? ""}`}
+              desk={desk}
+              device={toIssue}
+              today={today}
+              onIssued={(issue, stockLeft) => {
+                const device = [
+                  issue.modelName,
+                  issue.size !== null && i18n.t("size {size}", { size: issue.size }),
+                ]
+                  .filter(Boolean)
+                  .join(", ");
+                onIssued(
+                  stockLeft === null
+                    ? i18n.t("{device} is issued to {name}.", { device, name: issue.workerName })
+                    : i18n.t("{device} is issued to {name}; {stock} left in stock.", {
+                        device,
+                        name: issue.workerName,
+                        stock: stockLeft,
+                      }),
+                );
+              }}
+              onLeave={() => setToIssue(null)}
+            />
+          </div>
+        </Section>
+      )}
+      <Section title={i18n.t("Tried and tested")} id="tests">
+        <FitTestsTable
+          hidesWorker
+          rows={desk.tests}
+          isSelected={({ id }) => id === toIssue?.fit?.id}
+          actions={
+            can.issue
+              ? (fit) =>
+                  !fit.isVoid && (
+                    <>
+                      <TextButton
+                        aria-label={i18n.t("Issue {protector}", { protector: fit.modelName })}
+                        onClick={() => setToIssue({ modelId: fit.modelId, size: fit.size, fit })}
+                      >
+                        {i18n.t("Issue this")}
+                      </TextButton>
+                      {fit.can.change && <FitTestActions test={fit} />}
+                    </>
+                  )
+              : undefined
+          }
+          empty={<Empty title={i18n.t("Nothing was tested on this worker yet.")} />}
+        />
+        {can.issue && chosenId !== "" && !toIssue && (
+          <p className="after-table">
+            <Button onClick={() => setToIssue({ modelId: chosenId, size: null, fit: null })}>
+              {i18n.t("Issue {protector} without a test", {
+                protector: desk.candidates.find(({ modelId }) => modelId === chosenId)?.name ?? "",
+              })}
+            </Button>
+          </p>
+        )}
+      </Section>
+      <Section title={i18n.t("With the worker now")} id="issued">
+        <IssuesTable
+          hidesWorker
+          today={today}
+          rows={issues.data?.pages.flatMap((page) => page.rows) ?? []}
+          state={issues.isError ? "failed" : issues.data ? "ready" : "loading"}
+          error={issues.error}
+          onRetry={() => void issues.refetch()}
+          empty={<Empty title={i18n.t("Nothing was handed out yet.")} />}
+        />
+      </Section>
+    </div>
+  );
+}
+
+/** A fit that does not reach the need goes out only if somebody sees it. */
+function OnWhichFit({ device: { fit } }: { device: ToIssue }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  if (!fit) return <p>{i18n.t("Without a fit test.")}</p>;
+  const values = {
+    par: formatLevel(fit.parDb, locale),
+    need: formatLevel(fit.needDb, locale),
+  };
+  if (fit.hasPassed === null)
+    return <p>{i18n.t("PAR {par} dB; what is needed is not known.", values)}</p>;
+  return fit.hasPassed ? (
+    <p>{i18n.t("PAR {par} dB, {need} needed: it fits.", values)}</p>
+  ) : (
+    <p>
+      <b className="reversed">{i18n.t("Does not fit")}</b>{" "}
+      {i18n.t("PAR {par} dB, {need} needed. Fit it anew, or try another.", values)}
+    </p>
+  );
+}
+
+function Need({ desk: { need, worker } }: { desk: FittingDesk }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const { needDb, outsideDb, targetDb, mostDb, taskName, reason } = need;
+  const why = needReasonText(i18n, reason);
+  return (
+    <div className="desk-need">
+      {needDb === null || outsideDb === null || targetDb === null ? (
+        <p className="lead">{i18n.t("What this worker needs is not known.")}</p>
+      ) : (
+        <p className="lead">
+          {needDb > 0 ? (
+            <b>{i18n.t("{need} dB have to come off.", { need: formatLevel(needDb, locale) })}</b>
+          ) : (
+            <b>{i18n.t("Nothing has to come off.")}</b>
+          )}{" "}
+          {taskName === null
+            ? i18n.t("The shift has {outside} dB(A), and {target} may reach the ear.", {
+                outside: formatLevel(outsideDb, locale),
+                target: formatLimit(targetDb, locale),
+              })
+            : i18n.t("{task} has {outside} dB(A), and {target} may reach the ear.", {
+                task: taskName,
+                outside: formatLevel(outsideDb, locale),
+                target: formatLimit(targetDb, locale),
+              })}{" "}
+          {mostDb !== null &&
+            i18n.t("More than {most} would be too much.", { most: formatLevel(mostDb, locale) })}
+        </p>
+      )}
+      {why && <p className="beneath">{why}</p>}
+      {worker.personalTargetDb !== null && (
+        <p className="beneath">{i18n.t("A stricter target is set for this worker.")}</p>
+      )}
+    </div>
+  );
+}

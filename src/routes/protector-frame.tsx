@@ -1,0 +1,24 @@
+import { useLingui } from "@lingui/react";
+import { NavLink } from "react-router-dom";
+import { hasRole, useUser } from "../features/session/session";
+import { paths } from "../paths";
+
+/** From one page about protectors to the others. */
+export function ProtectorWays() {
+  const { i18n } = useLingui();
+  const user = useUser();
+  const items = [
+    { to: paths.protectors, label: i18n.t("Register"), isFor: true },
+    { to: paths.fitting, label: i18n.t("Fit and issue"), isFor: hasRole(user, "officer") },
+    { to: paths.fits, label: i18n.t("Fits"), isFor: hasRole(user, "officer", "auditor") },
+  ].filter(({ isFor }) => isFor);
+  return (
+    <span className="ways">
+      {items.map(({ to, label }) => (
+        <NavLink key={to} className="link" to={to} end={to === paths.protectors}>
+          {label}
+        </NavLink>
+      ))}
+    </span>
+  );
+}

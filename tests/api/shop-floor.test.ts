@@ -1,0 +1,359 @@
+import { expect, test } from "vitest";
+import { recomputeStaleDays } from "../../server/jobs/recompute-stale-days";
+import {
+  buildArea,
+  buildAssignment,
+  buildCrew,
+  buildProtector,
+  buildSite,
+  buildTask,
+  buildUser,
+  buildWorker,
+  daysFromToday,
+  insert,
+  type Site,
+  select,
+  signInAs,
+} from "../factories";
+import { describeEndpoint } from "./five-cases";
+
+const SIREN = [null, 60, 70, 80, 95, 92, 80, 70];
+
+const buildSignal = (site: Site) =>
+  insert("warning_signals", {
+    organizationId: site.organizationId,
+    siteId: site.id,
+    name: "Crane siren",
+    octaveBandsDb: [50, 60, 70, 80, 95, 92, 80, 70],
+  });
+
+async function buildRound(site: Site) {
+  const { organizationId, id: siteId } = site;
+  const worker = await buildWorker({ site });
+  const task = await buildTask({ site });
+  const seenOn = daysFromToday(-2);
+  const id = await insert("wearing_rounds", { organizationId, siteId, seenOn, source: "round" });
+  await insert("wearing_looks", {
+    organizationId,
+    roundId: id,
+    workerId: worker.id,
+    taskId: task.id,
+    seenOn,
+    wornCount: 3,
+    seenCount: 4,
+  });
+  return id;
+}
+
+async function buildIssue(site: Site) {
+  const model = await buildProtector({ organizationId: site.organizationId });
+  const worker = await buildWorker({ site });
+  const assignment = await buildAssignment({ worker, inner: model });
+  return insert("protector_issues", {
+    organizationId: site.organizationId,
+    siteId: site.id,
+    workerId: worker.id,
+    modelId: model.id,
+    assignmentId: assignment.id,
+    issuedOn: daysFromToday(-10),
+    offeredModelIds: [model.id],
+    wasInstructed: true,
+  });
+}
+
+describeEndpoint({
+  route: "GET /warning-signals",
+  as: "supervisor",
+  not: "worker",
+  event: null,
+  namesNothing: true,
+  bad: { path: "?siteId=none" },
+  call: async (site) => {
+    await buildSignal(site);
+    return { method: "get", path: "/warning-signals" };
+  },
+});
+describeEndpoint({
+  route: "GET /warning-signals/:id",
+  as: "auditor",
+  not: "worker",
+  event: null,
+  bad: { path: "-32" },
+  call: async (site) => ({ method: "get", path: `/warning-signals/${await buildSignal(site)}` }),
+});
+describeEndpoint({
+  route: "POST /warning-signals",
+  as: "officer",
+  not: "auditor",
+  event: "create-warning-signal",
+  bad: { body: { name: "" } },
+  badField: "name",
+  call: async (site) => ({
+    method: "post",
+    path: "/warning-signals",
+    body: { siteId: site.id, name: "Fire bell", octaveBandsDb: SIREN },
+  }),
+});
+describeEndpoint({
+  route: "PUT /warning-signals/:id",
+  as: "officer",
+  not: "supervisor",
+  event: "change-warning-signal",
+  bad: { body: { name: "" } },
+  badField: "name",
+  call: async (site) => ({
+    method: "put",
+    path: `/warning-signals/${await buildSignal(site)}`,
+    revision: 1,
+    body: {
+      siteId: site.id,
+      areaId: (await buildArea({ site })).id,
+      name: "Reversing alarm",
+      octaveBandsDb: SIREN,
+    },
+  }),
+});
+describeEndpoint({
+  route: "GET /stock",
+  as: "auditor",
+  not: "supervisor",
+  event: null,
+  namesNothing: true,
+  bad: { path: "?siteId=none" },
+  call: async () => ({ method: "get", path: "/stock" }),
+});
+describeEndpoint({
+  route: "GET /stock/moves",
+  as: "auditor",
+  not: "worker",
+  event: null,
+  namesNothing: true,
+  bad: { path: "?limit=0" },
+  call: async () => ({ method: "get", path: "/stock/moves" }),
+});
+describeEndpoint({
+  route: "GET /stock/replacements",
+  as: "officer",
+  not: "supervisor",
+  event: null,
+  namesNothing: true,
+  bad: { path: "?limit=0" },
+  call: async () => ({ method: "get", path: "/stock/replacements" }),
+});
+describeEndpoint({
+  route: "POST /stock/moves",
+  as: "officer",
+  not: "auditor",
+  event: "enter-stock",
+  bad: { body: { movedOn: daysFromToday(5) } },
+  badField: "movedOn",
+  call: async (site) => ({
+    method: "post",
+    path: "/stock/moves",
+    body: {
+      siteId: site.id,
+      modelId: (await buildProtector({ organizationId: site.organizationId })).id,
+      kind: "received",
+      quantity: 20,
+      movedOn: daysFromToday(-1),
+    },
+  }),
+});
+describeEndpoint({
+  route: "POST /issues/:id/replacements",
+  as: "officer",
+  not: "supervisor",
+  event: "change-cushions",
+  bad: { body: { changedOn: daysFromToday(-11) } },
+  badField: "changedOn",
+  call: async (site) => ({
+    method: "post",
+    path: `/issues/${await buildIssue(site)}/replacements`,
+    body: { part: "cushions", changedOn: daysFromToday(-1) },
+  }),
+});
+describeEndpoint({
+  route: "GET /crews/:id/wearing-tally",
+  as: "officer",
+  not: "auditor",
+  event: null,
+  bad: { path: "-32" },
+  call: async (site) => ({
+    method: "get",
+    path: `/crews/${(await buildCrew({ site, members: [await buildWorker({ site })] })).id}/wearing-tally?date=${daysFromToday(0)}`,
+  }),
+});
+describeEndpoint({
+  route: "GET /wearing-rounds",
+  as: "auditor",
+  not: "worker",
+  event: null,
+  namesNothing: true,
+  bad: { path: "?limit=0" },
+  call: async (site) => {
+    await buildRound(site);
+    return { method: "get", path: "/wearing-rounds" };
+  },
+});
+describeEndpoint({
+  route: "POST /wearing-rounds",
+  as: "officer",
+  not: "auditor",
+  event: "record-wearing-round",
+  bad: { body: { seenOn: daysFromToday(2) } },
+  badField: "seenOn",
+  call: async (site) => ({
+    method: "post",
+    path: "/wearing-rounds",
+    body: {
+      siteId: site.id,
+      seenOn: daysFromToday(-1),
+      looks: [
+        {
+          workerId: (await buildWorker({ site })).id,
+          taskId: (await buildTask({ site })).id,
+          wornCount: 1,
+          seenCount: 2,
+        },
+      ],
+    },
+  }),
+});
+describeEndpoint({
+  route: "POST /wearing-rounds/:id/strike",
+  as: "officer",
+  not: "supervisor",
+  event: "strike-wearing-round",
+  status: 200,
+  bad: { body: { reason: "" } },
+  badField: "reason",
+  call: async (site) => ({
+    method: "post",
+    path: `/wearing-rounds/${await buildRound(site)}/strike`,
+    revision: 1,
+    body: { reason: "the wrong crew" },
+  }),
+});
+
+test("what a round saw is the wearing time of a day that says none, until it is struck", async () => {
+  const site = await buildSite({ governingRuleSet: "uk-2005" });
+  const { organizationId } = site;
+  const task = await buildTask({ site, levelDb: 100, metric: { kind: "laeq" } });
+  const worker = await buildWorker({ site });
+  const protector = await buildProtector({ organizationId, data: { snrDb: 28 } });
+  await insert("task_levels", {
+    organizationId,
+    taskId: task.id,
+    number: 2,
+    effectiveFrom: "2020-01-01",
+    metric: JSON.stringify({ kind: "laeq" }),
+    levelDb: 100,
+    lcMinusLaDb: 2,
+    grade: "task-level",
+    reason: "with its C-weighted level",
+  });
+  await buildAssignment({ worker, inner: protector });
+  const crew = await buildCrew({ site, members: [worker] });
+  const officer = await signInAs(await buildUser({ organizationId, roles: ["officer"] }));
+  const date = daysFromToday(-1);
+  const saved = await officer.post(`/crews/${crew.id}/day`, {
+    date,
+    rows: [
+      {
+        kind: "worked",
+        workerId: worker.id,
+        localStart: "06:00",
+        lengthMin: 480,
+        tasks: [{ taskId: task.id, durationMin: 480 }],
+      },
+    ],
+  });
+  expect(saved.status).toBe(201);
+  const figures = async () => {
+    await recomputeStaleDays(organizationId);
+    const [found] = await select<{ verdict: string; db: number | null }>(
+      `SELECT r.verdict_at_ear AS verdict, r.at_ear_db AS db FROM days d JOIN day_results r ON r.id = d.current_result_id WHERE d.worker_id = $1`,
+      [worker.id],
+    );
+    return found;
+  };
+  expect(await figures()).toMatchObject({ verdict: "not-assessed" });
+  const round = await officer.post("/wearing-rounds", {
+    siteId: site.id,
+    seenOn: date,
+    looks: [{ workerId: worker.id, taskId: task.id, wornCount: 9, seenCount: 10 }],
+  });
+  expect(round.status).toBe(201);
+  // SNR off LC, less the United Kingdom's 4 dB: 100 + 2 − 28 + 4 = 78 while worn; a tenth of the time at 100.
+  expect((await figures())?.db).toBeCloseTo(10 * Math.log10(0.9 * 10 ** 7.8 + 0.1 * 10 ** 10), 6);
+  const struck = await officer.send({
+    method: "post",
+    path: `/wearing-rounds/${round.body.id}/strike`,
+    body: { reason: "another crew was meant" },
+    revision: round.body.revision,
+  });
+  expect(struck.status).toBe(200);
+  expect(await figures()).toMatchObject({ verdict: "not-assessed" });
+});
+
+test("a count enters the difference, and cushions are due by the model's interval from the last change", async () => {
+  const site = await buildSite();
+  const { organizationId } = site;
+  const officer = await signInAs(await buildUser({ organizationId, roles: ["officer"] }));
+  const model = await buildProtector({ organizationId, data: { cushionsEveryDays: 30 } });
+  const move = (kind: string, quantity: number) =>
+    officer.post("/stock/moves", {
+      siteId: site.id,
+      modelId: model.id,
+      kind,
+      quantity,
+      movedOn: daysFromToday(-1),
+    });
+  await move("received", 20);
+  await move("lost", 3);
+  expect((await move("counted", 15)).body).toMatchObject({ quantity: -2 });
+  expect((await officer.get("/stock")).body.rows).toMatchObject([{ quantity: 15, part: "device" }]);
+  const worker = await buildWorker({ site });
+  const assignment = await buildAssignment({ worker, inner: model });
+  const issueId = await insert("protector_issues", {
+    organizationId,
+    siteId: site.id,
+    workerId: worker.id,
+    modelId: model.id,
+    assignmentId: assignment.id,
+    issuedOn: daysFromToday(-40),
+    offeredModelIds: [model.id],
+    wasInstructed: true,
+  });
+  expect((await officer.get("/stock/replacements")).body.rows).toMatchObject([
+    { issueId, part: "cushions", dueOn: daysFromToday(-10) },
+  ]);
+  await officer.post(`/issues/${issueId}/replacements`, {
+    part: "cushions",
+    changedOn: daysFromToday(0),
+  });
+  expect((await officer.get("/stock/replacements")).body.rows).toMatchObject([
+    { issueId, dueOn: daysFromToday(30) },
+  ]);
+});
+
+test("a signal is heard bare and lost under a protector where the noise masks it", async () => {
+  const site = await buildSite();
+  const { organizationId } = site;
+  const task = await buildTask({ site, levelDb: null });
+  await insert("task_levels", {
+    organizationId,
+    taskId: task.id,
+    number: 1,
+    effectiveFrom: "2020-01-01",
+    metric: JSON.stringify({ kind: "laeq" }),
+    levelDb: 90,
+    octaveBandsDb: [80, 80, 80, 80, 80, 80, 80, 80],
+    grade: "task-level",
+  });
+  const id = await buildSignal(site);
+  const officer = await signInAs(await buildUser({ organizationId, roles: ["officer"] }));
+  const [bare] = (await officer.get(`/warning-signals/${id}`)).body.audibility;
+  // 95 dB at 1 kHz over a masked threshold of 80: 15 dB above.
+  expect(bare).toMatchObject({ off: { word: "audible", bestBandHz: 1000, aboveDb: 15 }, on: null });
+});

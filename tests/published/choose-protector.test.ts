@@ -1,0 +1,284 @@
+import fc from "fast-check";
+import { describe, expect, test } from "vitest";
+import { ENERGY_LAW, type ExchangeLaw, lawOf } from "../../shared/acoustics/exchange-law";
+import { outsideCriterion } from "../../shared/acoustics/outside-criterion";
+import { governingMethod } from "../../shared/acoustics/protection/at-ear";
+import { methodResult, reductions } from "../../shared/acoustics/protection/attenuation";
+import {
+  type Offer,
+  ProtectorChoice,
+  type Wearer,
+} from "../../shared/acoustics/protection/choose-protector";
+import type { ActivePart, OctaveBandValues, ProtectorData } from "../../shared/acoustics/types";
+import { RULE_SETS } from "../../shared/rule-sets";
+import { buildLevel, buildProtector, ruleSet, STEADY } from "./build-day";
+
+const EU = ruleSet("eu-2003-10-ec").protection;
+const US = ruleSet("us-general-industry");
+const US_LAW: ExchangeLaw = { ...lawOf(outsideCriterion(US)), thresholdDb: null, table: null };
+const ANY_GEAR = { helmet: null, glasses: null, respirator: null };
+
+function offer(modelId: string, data: Partial<ProtectorData>, fields: Partial<Offer> = {}): Offer {
+  return {
+    inner: buildProtector({ modelId, ...data }),
+    outer: null,
+    combinationBands: null,
+    name: modelId,
+    worksWith: ANY_GEAR,
+    isArchived: false,
+    stock: 5,
+    ...fields,
+  };
+}
+
+function wearer(levelDb: number, fields: Partial<Wearer> = {}): Wearer {
+  return {
+    noises: [{ level: buildLevel(levelDb, { lcMinusLaDb: 0 }), durationMin: 480 }],
+    personalTargetDb: null,
+    wornGear: [],
+    wornMin: 480,
+    fits: new Map(),
+    ...fields,
+  };
+}
+
+const order = (offers: Offer[], who: Wearer) =>
+  new ProtectorChoice(offers, EU, ENERGY_LAW)
+    .for(who)
+    .map(({ modelId, decidedBy }) => [modelId, decidedBy]);
+
+/** EN 458 against 85 (memory): 100 dB asks for 15 to 30, and 20 to 25 is good. */
+describe("the order, one comparison after the other", () => {
+  test("adequacy: good before just enough and strong, then too much, then too little", () => {
+    const found = order(
+      [
+        offer("little", { snrDb: 12 }),
+        offer("much", { snrDb: 33 }),
+        offer("just", { snrDb: 17 }),
+        offer("good", { snrDb: 22 }),
+      ],
+      wearer(100),
+    );
+    expect(found).toEqual([
+      ["good", "first"],
+      ["just", "adequacy"],
+      ["much", "adequacy"],
+      ["little", "adequacy"],
+    ]);
+  });
+
+  test("what gear, the archive or missing data exclude comes last and says why", () => {
+    const noHelmet = { worksWith: { ...ANY_GEAR, helmet: false } };
+    const found = new ProtectorChoice(
+      [
+        offer("muff", { snrDb: 22 }, noHelmet),
+        offer("old", { snrDb: 22 }, { isArchived: true }),
+        offer("bare", {}),
+        offer("plug", { snrDb: 12 }),
+      ],
+      EU,
+      ENERGY_LAW,
+    ).for(wearer(100, { wornGear: ["glasses", "helmet"] }));
+    expect(found[0]).toMatchObject({ modelId: "plug", word: "too-little", excludedBy: null });
+    expect(found[1]).toMatchObject({ decidedBy: "compatibility" });
+    expect(
+      Object.fromEntries(found.map(({ modelId, excludedBy }) => [modelId, excludedBy])),
+    ).toEqual({
+      plug: null,
+      muff: { code: "gear", gear: "helmet" },
+      old: { code: "archived", gear: null },
+      bare: { code: "no-data", gear: null },
+    });
+  });
+
+  test("margin in whole decibels; where all are too much the least of it", () => {
+    expect(order([offer("a", { snrDb: 21 }), offer("b", { snrDb: 24 })], wearer(100))).toEqual([
+      ["b", "first"],
+      ["a", "margin"],
+    ]);
+    expect(order([offer("a", { snrDb: 37 }), offer("b", { snrDb: 32 })], wearer(100))).toEqual([
+      ["b", "first"],
+      ["a", "margin"],
+    ]);
+    expect(order([offer("a", { snrDb: 22.2 }), offer("b", { snrDb: 22.7 })], wearer(100))).toEqual([
+      ["a", "first"],
+      ["b", "name"],
+    ]);
+  });
+
+  test("the margin is that of lower confidence: mean − 1.64 deviations", () => {
+    const flat = (db: number): OctaveBandValues => [db, db, db, db, db, db, db, db];
+    const noises = [{ level: buildLevel(100, { octaveBandsDb: flat(90) }), durationMin: 480 }];
+    const found = new ProtectorChoice(
+      [
+        offer("wide", { bands: { meanDb: flat(30), sdDb: flat(8) } }),
+        offer("narrow", { bands: { meanDb: flat(24), sdDb: flat(2) } }),
+      ],
+      EU,
+      ENERGY_LAW,
+    ).for(wearer(100, { noises }));
+    // Both take 22 dB off by the rule; 95 % of users get 16.88 and 20.72.
+    expect(found.map(({ modelId }) => modelId)).toEqual(["narrow", "wide"]);
+    expect(found[0]!.marginDb).toBeCloseTo(5.72, 9);
+    expect(found[1]!.marginDb).toBeCloseTo(1.88, 9);
+    expect(found[1]!.decidedBy).toBe("margin");
+  });
+
+  test("own fit, then battery, stock and name", () => {
+    const active = (batteryMin: number | null): ActivePart => ({
+      attenuationDb: null,
+      delayS: null,
+      gain: null,
+      maximumDb: null,
+      bandwidthHz: null,
+      saturatesAboveDb: null,
+      batteryMin,
+    });
+    const fits = new Map([
+      ["failed", { parDb: 22, hasPassed: false, testedOn: "2026-01-05" }],
+      ["passed", { parDb: 22, hasPassed: true, testedOn: "2026-01-05" }],
+    ]);
+    const found = order(
+      [
+        offer("failed", { snrDb: 22 }),
+        offer("z", { snrDb: 22 }),
+        offer("none-left", { snrDb: 22 }, { stock: 0 }),
+        offer("not-counted", { snrDb: 22 }, { stock: null }),
+        offer("short", { snrDb: 22, active: active(300) }),
+        offer("unknown", { snrDb: 22, active: active(null) }),
+        offer("lasts", { snrDb: 22, active: active(600) }),
+        offer("passed", { snrDb: 22 }),
+      ],
+      wearer(100, { fits }),
+    );
+    expect(found).toEqual([
+      ["passed", "first"],
+      ["lasts", "fit"],
+      ["z", "name"],
+      ["not-counted", "stock"],
+      ["none-left", "stock"],
+      ["unknown", "battery"],
+      ["short", "battery"],
+      ["failed", "fit"],
+    ]);
+  });
+});
+
+describe("several noises", () => {
+  const noises = [100, 88].map((db) => ({
+    level: buildLevel(db, { lcMinusLaDb: 0 }),
+    durationMin: 240,
+  }));
+
+  test("EN 458: too little somewhere before too much somewhere, and the margin of the worst", () => {
+    const [found] = new ProtectorChoice([offer("a", { snrDb: 22 })], EU, ENERGY_LAW).for(
+      wearer(0, { noises }),
+    );
+    // 78 in one, 66 in the other: too much there.
+    expect(found).toMatchObject({ word: "too-much", wornDb: 66 });
+    expect(found!.marginDb).toBeCloseTo(7, 9);
+  });
+
+  test("Appendix B: the TWA of them all under the protector (computed)", () => {
+    const steady = noises.map(({ level, durationMin }) => ({
+      level: { ...level, metric: STEADY, lcMinusLaDb: null },
+      durationMin,
+    }));
+    const [found] = new ProtectorChoice(
+      [offer("a", { usRatingDb: 19 })],
+      US.protection,
+      US_LAW,
+    ).for(wearer(0, { noises: steady }));
+    const twa = 5 * Math.log2(0.5 * 2 ** (88 / 5) + 0.5 * 2 ** (76 / 5));
+    expect(found!.wornDb).toBeCloseTo(twa, 9);
+    expect(found).toMatchObject({ word: "enough" });
+    expect(found!.marginDb).toBeCloseTo(90 - twa, 9);
+  });
+
+  test("none on record: nothing to say", () => {
+    const [found] = new ProtectorChoice([offer("a", { snrDb: 22 })], EU, ENERGY_LAW).for(
+      wearer(0, { noises: [] }),
+    );
+    expect(found).toMatchObject({ word: null, wornDb: null, excludedBy: { code: "no-data" } });
+  });
+});
+
+test("two together are offered by their test data, and say which outer one", () => {
+  const flat = (db: number): OctaveBandValues => [db, db, db, db, db, db, db, db];
+  const two = offer(
+    "plug",
+    { snrDb: 20 },
+    {
+      outer: buildProtector({ modelId: "muff", snrDb: 20 }),
+      combinationBands: { meanDb: flat(34), sdDb: flat(2) },
+      name: "plug and muff",
+    },
+  );
+  const noises = [{ level: buildLevel(112, { octaveBandsDb: flat(102) }), durationMin: 60 }];
+  const choice = new ProtectorChoice([two, offer("plug", { snrDb: 20 })], EU, ENERGY_LAW);
+  const found = choice.for(wearer(0, { noises }));
+  expect(found[0]).toMatchObject({ modelId: "plug", outerModelId: "muff", word: "good" });
+  expect(found[0]!.wornDb).toBeCloseTo(80, 9);
+});
+
+test("property: every level is the one that the day's engine has, for any data and any rule", () => {
+  const db = fc.double({ min: 8, max: 40, noNaN: true });
+  const band = fc.tuple(db, db, db, db, db, db, db, db);
+  const sd = fc.double({ min: 1, max: 6, noNaN: true });
+  const sds = fc.tuple(sd, sd, sd, sd, sd, sd, sd, sd);
+  const maybe = <T>(of: fc.Arbitrary<T>) => fc.option(of, { nil: null });
+  fc.assert(
+    fc.property(
+      fc.record({
+        levelDb: fc.double({ min: 86, max: 115, noNaN: true }),
+        lcMinusLaDb: maybe(fc.double({ min: -3, max: 11, noNaN: true })),
+        octaveBandsDb: maybe(
+          fc.tuple(
+            maybe(fc.double({ min: 60, max: 110, noNaN: true })),
+            ...Array.from({ length: 7 }, () => fc.double({ min: 60, max: 110, noNaN: true })),
+          ) as unknown as fc.Arbitrary<OctaveBandValues>,
+        ),
+      }),
+      fc.record({
+        bands: maybe(fc.record({ meanDb: band, sdDb: sds })),
+        snrDb: maybe(db),
+        usRatingDb: maybe(fc.integer({ min: 5, max: 33 })),
+        slc80Db: maybe(db),
+        hml: maybe(fc.tuple(db, db, db)),
+      }),
+      maybe(db),
+      maybe(fc.record({ meanDb: band, sdDb: sds })),
+      fc.boolean(),
+      fc.constantFrom(...RULE_SETS),
+      (noise, { hml, ...label }, parDb, combinationBands, isDouble, { protection: rule }) => {
+        const level = buildLevel(noise.levelDb, noise);
+        const [hDb, mDb, lDb] = hml ?? [null, null, null];
+        const inner = buildProtector({ modelId: "a", ...label, hDb, mDb, lDb });
+        const outer = isDouble ? buildProtector({ modelId: "b", usRatingDb: 20 }) : null;
+        const fits = new Map(
+          parDb === null ? [] : [["a", { parDb, hasPassed: null, testedOn: "2026-01-05" }]],
+        );
+        const [found] = new ProtectorChoice(
+          [offer("a", {}, { inner, outer, combinationBands })],
+          rule,
+          rule.adequacy === "appendix-b" ? US_LAW : ENERGY_LAW,
+        ).for(wearer(0, { noises: [{ level, durationMin: 480 }], fits }));
+        const protection = {
+          assignmentId: null,
+          inner,
+          outer,
+          combinationBands,
+          ownFitDb: parDb,
+          activeCheckPassed: false,
+        };
+        const { atEarDb } = governingMethod(
+          reductions(level, protection, rule).map((one) => methodResult(level.levelDb, one)),
+          rule,
+        );
+        if (atEarDb === null) expect(found!.excludedBy?.code).toBe("no-data");
+        else expect(found!.wornDb).toBeCloseTo(atEarDb, 9);
+      },
+    ),
+    { numRuns: 1000 },
+  );
+});

@@ -1,0 +1,121 @@
+import { describe, expect, test } from "vitest";
+import { everyMethod, LARGE_SPREAD_DB } from "../../shared/acoustics/protection/every-method";
+import type { OctaveBandValues, Protection } from "../../shared/acoustics/types";
+import { buildLevel, buildProtection, buildProtector, ruleSet } from "./build-day";
+
+const FLAT: OctaveBandValues = [90, 90, 90, 90, 90, 90, 90, 90];
+const same = (db: number): OctaveBandValues => [db, db, db, db, db, db, db, db];
+const ALL = {
+  hDb: 30,
+  mDb: 24,
+  lDb: 16,
+  snrDb: 26,
+  usRatingDb: 25,
+  slc80Db: 24,
+  percentile: { mostDb: 20, fewDb: 30 },
+  bands: { meanDb: same(30), sdDb: same(5) },
+} as const;
+const EU = ruleSet("eu-2003-10-ec").protection;
+const UK = ruleSet("uk-2005").protection;
+const US = ruleSet("us-general-industry").protection;
+const NOISE = buildLevel(100, { lcMinusLaDb: 2, octaveBandsDb: FLAT });
+const levelsOf = (protection: Protection, rule = EU, noise = NOISE) =>
+  everyMethod(noise, protection, rule).methods.map(
+    ({ method, protectedPct, derating, reachedBy, atEarDb }) =>
+      [`${method}${protectedPct ?? derating ?? reachedBy ?? ""}`, atEarDb] as const,
+  );
+
+test("100 dB(A) with LC − LA of 2 behind one muff, every method by hand (computed)", () => {
+  const found = Object.fromEntries(levelsOf(buildProtection(ALL, { ownFitDb: 15 })));
+  const byHand = {
+    // A flat attenuation of 30 − 5α takes as much off any spectrum; α from ISO 4869-2.
+    "octave-band80": 100 - 30 + 0.84 * 5,
+    "octave-band84": 75,
+    "octave-band95": 100 - 30 + 1.64 * 5,
+    "octave-band98": 80,
+    hml: 76,
+    snr: 100 + 2 - 26,
+    // Off the C-weighted level where nothing is derated, else 7 dB less: (25 − 7)/2, and 25 · 0.75 − 7.
+    "us-single-numbernone": 77,
+    "us-single-numberhalf": 91,
+    "us-single-numberby-type": 88.25,
+    percentilemost: 80,
+    percentilefew: 70,
+    slc80: 78,
+    "own-fit": 85,
+  };
+  expect(Object.keys(found)).toEqual(Object.keys(byHand));
+  for (const [name, db] of Object.entries(byHand)) expect(found[name]).toBeCloseTo(db, 9);
+});
+
+test("a national allowance comes off every label and never off an own fit", () => {
+  const protection = buildProtection(ALL, { ownFitDb: 15 });
+  const plain = levelsOf(protection);
+  for (const [index, [name, db]] of levelsOf(protection, UK).entries())
+    expect(db).toBeCloseTo(plain[index]![1]! + (name === "own-fit" ? 0 : 4), 9);
+});
+
+describe("which one governs", () => {
+  const governing = (protection: Protection, rule = EU) =>
+    everyMethod(NOISE, protection, rule)
+      .methods.filter(({ governs }) => governs)
+      .map(({ method, protectedPct, derating }) => [method, protectedPct, derating]);
+
+  test("the rule's first method in the rule's own way, and only that", () => {
+    expect(governing(buildProtection(ALL))).toEqual([["octave-band", 84, null]]);
+    expect(governing(buildProtection({ ...ALL, bands: null }))).toEqual([["hml", null, null]]);
+    expect(governing(buildProtection(ALL), US)).toEqual([["us-single-number", null, "none"]]);
+    expect(governing(buildProtection(ALL), { ...US, derating: "half" })).toEqual([
+      ["us-single-number", null, "half"],
+    ]);
+  });
+
+  test("an own fit where it replaces; none where the data allow none", () => {
+    expect(governing(buildProtection(ALL, { ownFitDb: 15 }))).toEqual([["own-fit", null, null]]);
+    expect(governing(buildProtection({}))).toEqual([]);
+  });
+});
+
+describe("what can't be said has its reason", () => {
+  const reasons = (protection: Protection, noise = NOISE) =>
+    Object.fromEntries(
+      everyMethod(noise, protection, EU).methods.map(({ method, reason }) => [method, reason]),
+    );
+
+  test("no data, no spectrum, no C-weighted level, past the range of HML", () => {
+    expect(new Set(Object.values(reasons(buildProtection({}))))).toEqual(
+      new Set(["no-attenuation-data"]),
+    );
+    expect(reasons(buildProtection(ALL), buildLevel(100))).toMatchObject({
+      "octave-band": "no-spectrum",
+      hml: "no-c-weighted-level",
+      snr: "no-c-weighted-level",
+      percentile: null,
+    });
+    expect(reasons(buildProtection(ALL), buildLevel(100, { lcMinusLaDb: 11 })).hml).toBe(
+      "lc-la-out-of-range",
+    );
+  });
+
+  test("two together without test data", () => {
+    const two = buildProtection(ALL, { outer: buildProtector(ALL), ownFitDb: 20 });
+    expect(reasons(two)).toMatchObject({
+      "octave-band": "combination-not-tested",
+      snr: "combination-not-tested",
+      percentile: "combination-not-tested",
+      "own-fit": "combination-not-tested",
+    });
+  });
+});
+
+test("the spread is that of the methods as the rule computes them; past 5 dB it is large (common practice, no source)", () => {
+  // HML and SNR 76, US 77, SLC80 78, percentile 80, bands 75.
+  expect(everyMethod(NOISE, buildProtection(ALL), EU).spreadDb).toBeCloseTo(5, 9);
+  const own = everyMethod(NOISE, buildProtection(ALL, { ownFitDb: 15 }), EU);
+  expect(own.spreadDb).toBeCloseTo(10, 9);
+  expect(own.isSpreadLarge).toBe(true);
+  const two = everyMethod(NOISE, buildProtection({ snrDb: 26, slc80Db: 24 }), EU);
+  expect(two).toMatchObject({ spreadDb: 2, isSpreadLarge: false });
+  expect(everyMethod(NOISE, buildProtection({ snrDb: 26 }), EU).spreadDb).toBeNull();
+  expect(LARGE_SPREAD_DB).toBe(5);
+});
