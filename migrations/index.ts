@@ -12,6 +12,7 @@ import { protectorsAndFit } from "./20261201150000-protectors-and-fit";
 import { microphoneCheckSpectrum } from "./20261201151000-microphone-check-spectrum";
 import { issueReason } from "./20261201152000-issue-reason";
 import { samplingPatterns } from "./20261201160000-sampling-patterns";
+import { protectorsLookedAt } from "./20261201161000-protectors-looked-at";
 
 /** In the order in which they run. */
 export const migrations = [
@@ -26,7 +27,8 @@ export const migrations = [
   recordings,
   atEarBounds,
   protectorsAndFit,
-  samplingPatterns,
   microphoneCheckSpectrum,
   issueReason,
+  samplingPatterns,
+  protectorsLookedAt,
 ];

@@ -38,6 +38,7 @@ export const paths = {
   instrument: (id: string) => `/measuring/instruments/${id}`,
   toMeasure: "/measuring",
   workplaceChanges: "/measuring/changes",
+  protectorsBefore: (changeId: string) => `/measuring/changes/${changeId}/protectors`,
   surveys: "/measuring/surveys",
   newSurvey: "/measuring/surveys/new",
   survey: (id: string) => `/measuring/surveys/${id}`,

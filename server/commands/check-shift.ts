@@ -1,7 +1,8 @@
 import type { z } from "zod";
 import type { ProblemIssue } from "../../shared/schemas/problem";
 import type { ShiftFacts, ShiftTaskInput } from "../../shared/schemas/shift";
-import { atLocalTime, localTime } from "../../shared/time/zone";
+import { atLocalTime, localDate, localTime } from "../../shared/time/zone";
+import { todayAt } from "../lib/calendar";
 import { rows } from "../lib/db";
 import { issue } from "../lib/errors";
 import type { SavedShiftRow } from "../queries/saved-shifts";
@@ -70,7 +71,9 @@ export function openEndIssues(
   confirmsOpenEnd: boolean,
 ): ProblemIssue[] {
   const end = new Date(endOf(shift));
-  return end.getTime() > Date.now() && !confirmsOpenEnd
+  // One of a later day is refused as a whole.
+  const hasDayBegun = localDate(shift.startsAt, timeZone) <= todayAt(timeZone);
+  return hasDayBegun && end.getTime() > Date.now() && !confirmsOpenEnd
     ? [issue(["lengthMin"], "open-end-unconfirmed", { time: localTime(end, timeZone) })]
     : [];
 }

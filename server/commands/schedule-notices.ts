@@ -1,12 +1,12 @@
 import { randomUUID } from "node:crypto";
 import { isNotified, NEWS_FOR_DAYS } from "../../shared/findings/notified";
-import type { FindingKind } from "../../shared/schemas/finding";
 import { addDays } from "../../shared/time/zone";
 import { todayAt } from "../lib/calendar";
 import { execute, row, rows } from "../lib/db";
 import { addJob } from "../lib/jobs";
 import type { Actor } from "../lib/policy";
 import type { Recomputation } from "./recompute-days";
+import type { OpenedFinding } from "./update-findings";
 
 interface Told {
   recipientId: string;
@@ -65,14 +65,7 @@ export async function scheduleNotices({
   await writeNotices(organizationId, siteId, entryId, notBefore, items, new Map());
 }
 
-interface News {
-  id: string;
-  kind: FindingKind;
-  criterion: string;
-  workerId: string;
-  date: string;
-  resultId: string;
-}
+type News = Omit<OpenedFinding, "siteId">;
 
 /**
  * Findings of which nobody was told yet and that a fresh one of these days shows, each with the latest such day. One that

@@ -550,7 +550,9 @@ export class RowReader {
             b,
             lengths[0]!,
             firstMark === 46,
-            `${a}${String.fromCharCode(firstMark)}${b}${String.fromCharCode(firstMark)}${c}`,
+            [a, b, c]
+              .map((part, index) => String(part).padStart(lengths[index]!, "0"))
+              .join(String.fromCharCode(firstMark)),
             line,
           );
       }

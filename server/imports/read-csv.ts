@@ -1,4 +1,5 @@
 import { Readable } from "node:stream";
+import { finished } from "node:stream/promises";
 import { type Info, parse } from "csv-parse";
 import { parse as parseAtOnce } from "csv-parse/sync";
 import type { ImportIssue } from "../../shared/schemas/import";
@@ -17,6 +18,13 @@ export interface CsvFile {
   delimiter: Delimiter;
   lines: CsvLine[];
   issues: ImportIssue[];
+}
+
+/** One record as the parser gives it, with its text. */
+interface CsvRecord {
+  record: string[];
+  raw: string;
+  info: Info;
 }
 
 const headerName = (cell: string) =>
@@ -82,6 +90,33 @@ export async function readCsv(
   linesLimit: number,
 ): Promise<CsvFile> {
   const delimiter = delimiterOf(text, new Set(columns.map(({ name }) => name)));
+  const lines: CsvLine[] = [];
+  const issues: ImportIssue[] = [];
+  let header: string[] | null = null;
+  let isHeaderBad = false;
+  let lastLine = 0;
+  const take = ({ record, raw, info: { lines: line } }: CsvRecord) => {
+    lastLine = line;
+    if (!header) {
+      header = record.map(headerName);
+      issues.push(...headerIssues(header, columns));
+      isHeaderBad = issues.length > 0;
+      return;
+    }
+    if (isHeaderBad || record.every((cell) => cell.trim() === "")) return;
+    if (lines.length >= linesLimit) throw new AppError("too-large", 413, { linesLimit });
+    if (isQuoteBroken(raw, delimiter)) {
+      issues.push({ line, field: "", code: "quote-broken", params: {} });
+      return;
+    }
+    if (record.length !== header.length) {
+      const params = { expected: header.length, found: record.length };
+      issues.push({ line, field: "", code: "field-count", params });
+      return;
+    }
+    const cells = header.map((name, index) => [name, unguarded(record[index]!.trim())] as const);
+    lines.push({ line, cells: new Map(cells) });
+  };
   const parser = Readable.from(pieces(text)).pipe(
     parse({
       bom: true,
@@ -91,50 +126,19 @@ export async function readCsv(
       relax_column_count: true,
       relax_quotes: true,
       skip_empty_lines: true,
+      // Taken as they are read, and not from the stream: its error would drop what waits in it.
+      on_record: (record) => {
+        take(record as unknown as CsvRecord);
+        return null;
+      },
     }),
   );
-  const lines: CsvLine[] = [];
-  const issues: ImportIssue[] = [];
-  let header: string[] | null = null;
-  let readLines = 0;
   try {
-    for await (const { record, info, raw } of parser as AsyncIterable<{
-      record: string[];
-      info: Info;
-      raw: string;
-    }>) {
-      readLines = info.lines;
-      if (!header) {
-        header = record.map(headerName);
-        issues.push(...headerIssues(header, columns));
-        if (issues.length > 0) break;
-        continue;
-      }
-      if (record.every((cell) => cell.trim() === "")) continue;
-      if (lines.length >= linesLimit) throw new AppError("too-large", 413, { linesLimit });
-      const line = info.lines;
-      if (isQuoteBroken(raw, delimiter)) {
-        issues.push({ line, field: "", code: "quote-broken", params: {} });
-        continue;
-      }
-      if (record.length !== header.length) {
-        issues.push({
-          line,
-          field: "",
-          code: "field-count",
-          params: { expected: header.length, found: record.length },
-        });
-        continue;
-      }
-      lines.push({
-        line,
-        cells: new Map(header.map((name, index) => [name, unguarded(record[index]!.trim())])),
-      });
-    }
+    await finished(parser.resume());
   } catch (error) {
     if ((error as { code?: string }).code !== "CSV_QUOTE_NOT_CLOSED") throw error;
     // The mark that nothing closes swallows the rest of the file: it stands after what could be read.
-    issues.push({ line: readLines + 1, field: "", code: "quote-broken", params: {} });
+    issues.push({ line: lastLine + 1, field: "", code: "quote-broken", params: {} });
   }
   if (header && lines.length === 0 && issues.length === 0)
     issues.push({ line: 1, field: "", code: "no-lines", params: {} });

@@ -6,7 +6,7 @@ import { type Actor, abilities, visible } from "../lib/policy";
 import { fitPolicy } from "../policies";
 import { dueAfterTest } from "./fit-dues";
 
-type Found = Omit<FitTestView, "can">;
+type Found = Omit<FitTestView, "can"> & { createdAt: string };
 
 /** The test that counts of a worker and a model: the latest that stands. */
 const isLatest = `NOT f.is_void AND v.par_db IS NOT NULL AND NOT EXISTS (
@@ -18,7 +18,7 @@ const passedBefore = `(SELECT y.has_passed FROM fit_tests x JOIN fit_test_revisi
   ORDER BY x.tested_on DESC, x.created_at DESC LIMIT 1)`;
 
 const SELECT_FIT_TESTS = `SELECT f.id, f.revision, f.site_id AS "siteId", f.worker_id AS "workerId", w.name AS "workerName", w.employee_number AS "employeeNumber",
-    f.model_id AS "modelId", m.name AS "modelName", f.tested_on::text AS "testedOn", v.method, v.size, v.facts, v.confidence_pct AS "confidencePct",
+    f.model_id AS "modelId", m.name AS "modelName", f.tested_on::text AS "testedOn", f.created_at::text AS "createdAt", v.method, v.size, v.facts, v.confidence_pct AS "confidencePct",
     v.need_db AS "needDb", v.note, v.left_db AS "leftDb", v.right_db AS "rightDb", v.par_db AS "parDb", v.has_passed AS "hasPassed",
     v.active_passed AS "activePassed", f.is_void AS "isVoid", u.name AS "authorName",
     CASE WHEN EXISTS (SELECT 1 FROM protector_issues i WHERE i.fit_test_id = f.id) THEN 'issued' ELSE 'tried' END AS outcome,
@@ -26,7 +26,7 @@ const SELECT_FIT_TESTS = `SELECT f.id, f.revision, f.site_id AS "siteId", f.work
   FROM fit_tests f JOIN fit_test_revisions v ON v.id = f.current_revision_id JOIN workers w ON w.id = f.worker_id
   JOIN sites s ON s.id = f.site_id JOIN protector_models m ON m.id = f.model_id LEFT JOIN users u ON u.id = v.author_id`;
 
-const present = (actor: Actor, test: Found): FitTestView => ({
+const present = (actor: Actor, { createdAt: _, ...test }: Found): FitTestView => ({
   ...test,
   can: { change: abilities(fitPolicy, actor, test).change && !test.isVoid },
 });
@@ -36,30 +36,33 @@ export async function listFitTests(
   actor: Actor,
   filter: z.output<typeof FitTestFilter>,
 ): Promise<{ rows: FitTestView[]; next: string | null }> {
-  const before = decodeCursor(filter.cursor, 2);
+  const before = decodeCursor(filter.cursor, 3);
   const conditions = [
     visible(fitPolicy, actor, "f"),
     filter.siteId && "f.site_id = :siteId",
     filter.workerId && "f.worker_id = :workerId",
     filter.modelId && "f.model_id = :modelId",
-    before && "(f.tested_on, f.id) < (CAST(:beforeDate AS date), CAST(:beforeId AS uuid))",
+    before &&
+      "(f.tested_on, f.created_at, f.id) < (CAST(:beforeDate AS date), CAST(:beforeAt AS timestamptz), CAST(:beforeId AS uuid))",
   ].filter(Boolean);
   const found = await rows<Found>(
-    `${SELECT_FIT_TESTS} WHERE ${conditions.join(" AND ")} ORDER BY f.tested_on DESC, f.id DESC LIMIT :limit`,
+    `${SELECT_FIT_TESTS} WHERE ${conditions.join(" AND ")} ORDER BY f.tested_on DESC, f.created_at DESC, f.id DESC LIMIT :limit`,
     {
       siteId: filter.siteId,
       workerId: filter.workerId,
       modelId: filter.modelId,
       beforeDate: before?.[0] ?? null,
-      beforeId: before?.[1] ?? null,
+      beforeAt: before?.[1] ?? null,
+      beforeId: before?.[2] ?? null,
       limit: filter.limit + 1,
     },
   );
-  return pageFrom(
-    found.map((test) => present(actor, test)),
-    filter.limit,
-    ({ testedOn, id }) => [testedOn, id],
-  );
+  const page = pageFrom(found, filter.limit, ({ testedOn, createdAt, id }) => [
+    testedOn,
+    createdAt,
+    id,
+  ]);
+  return { ...page, rows: page.rows.map((test) => present(actor, test)) };
 }
 
 export async function fitTestsById(actor: Actor, id: string): Promise<FitTestView[]> {

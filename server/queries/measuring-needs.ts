@@ -2,6 +2,7 @@ import type { MeasuringNeed, MeasuringNeeds, MeasuringReason } from "../../share
 import { rows } from "../lib/db";
 import { type Actor, abilities, visible } from "../lib/policy";
 import { sitePolicy, surveyPolicy } from "../policies";
+import { protectorsToReview } from "./chosen-before";
 
 const UNDECIDED_DAYS = 90;
 
@@ -99,7 +100,8 @@ export async function measuringNeeds(actor: Actor, siteId: string | null): Promi
          'taskIds', coalesce(c.task_ids, '{}'),
          'assignmentsCount', (SELECT count(*)::int FROM assignments a JOIN workers w ON w.id = a.worker_id
             WHERE w.job_id = c.job_id AND a.valid @> current_date AND lower(a.valid) < c.happened_on
-              AND (a.task_id = ANY (c.task_ids) OR a.area_id = ANY (c.area_ids) OR (a.task_id IS NULL AND a.area_id IS NULL))))
+              AND (a.task_id = ANY (c.task_ids) OR a.area_id = ANY (c.area_ids) OR (a.task_id IS NULL AND a.area_id IS NULL))
+              AND NOT EXISTS (SELECT 1 FROM protectors_looked_at k WHERE k.change_id = c.id AND k.assignment_id = a.id)))
          ORDER BY c.happened_on DESC, c.id) AS list
        FROM concerned c GROUP BY c.job_id),
      open_days AS (
@@ -157,6 +159,7 @@ export async function measuringNeeds(actor: Actor, siteId: string | null): Promi
   return {
     rows: needs,
     groupsCount: found.length,
+    protectors: await protectorsToReview(actor, siteId),
     sites: await remeasuring(actor, siteId),
   };
 }

@@ -1,11 +1,14 @@
 import { IdParams } from "../../shared/schemas/common";
 import {
+  ChosenBefore,
+  ProtectorsLookedAt,
   WorkplaceChangeFilter,
   WorkplaceChangeInput,
   WorkplaceChangePage,
   WorkplaceChangeStrike,
   WorkplaceChangeView,
 } from "../../shared/schemas/workplace-change";
+import { lookAtProtectors } from "../commands/look-at-protectors";
 import { recordWorkplaceChange } from "../commands/record-workplace-change";
 import { strikeWorkplaceChange } from "../commands/strike-workplace-change";
 import { endpoint } from "../lib/endpoint";
@@ -15,6 +18,7 @@ import { Area, Site } from "../models/site";
 import { WorkplaceChange } from "../models/survey";
 import { Job, Task } from "../models/task";
 import { may, programmePolicy, sitePolicy, surveyPolicy } from "../policies";
+import { chosenBefore } from "../queries/chosen-before";
 import { listWorkplaceChanges, workplaceChangeView } from "../queries/workplace-changes";
 
 /** What the change was made to: an area, a task or a job of its own site. */
@@ -30,6 +34,11 @@ async function subjectOf(actor: Actor, { areaId, taskId, jobId }: WorkplaceChang
   const { siteId } = await findVisible(Job, programmePolicy, jobId ?? "", actor);
   return { field: "jobId" as const, siteId };
 }
+
+const chosenBeforeView = async (actor: Actor, id: string) => ({
+  change: await workplaceChangeView(actor, id),
+  rows: await chosenBefore(actor, id),
+});
 
 export function defineWorkplaceChangeRoutes(): void {
   endpoint.get(
@@ -57,6 +66,40 @@ export function defineWorkplaceChangeRoutes(): void {
       const subject = await subjectOf(actor, body);
       const change = await recordWorkplaceChange(actor, site, subject, body);
       return workplaceChangeView(actor, change.id);
+    },
+  );
+
+  endpoint.get(
+    "/workplace-changes/:id/protectors",
+    {
+      summary: "Protectors chosen before a change, at which nobody has looked since",
+      may: may.readMeasuring,
+      params: IdParams,
+      reply: ChosenBefore,
+    },
+    async ({ actor, params }) => {
+      const change = await findVisible(WorkplaceChange, surveyPolicy, params.id, actor);
+      return chosenBeforeView(actor, change.id);
+    },
+  );
+
+  endpoint.post(
+    "/workplace-changes/:id/protectors",
+    {
+      summary: "Protectors chosen before a change were looked at, and are still right",
+      may: may.officer,
+      params: IdParams,
+      body: ProtectorsLookedAt,
+      reply: ChosenBefore,
+      status: 200,
+    },
+    async ({ actor, params, body }) => {
+      const change = await findVisible(WorkplaceChange, surveyPolicy, params.id, actor, {
+        lock: true,
+      });
+      authorize(surveyPolicy, actor, "change", change);
+      await lookAtProtectors(actor, change, body.assignmentIds);
+      return chosenBeforeView(actor, change.id);
     },
   );
 

@@ -278,6 +278,10 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("This worker stands here twice.");
     case "task-needed":
       return i18n.t("Task by task, each line needs its task.");
+    case "cycle-needed":
+      return i18n.t("Say how long a cycle of the noise is.");
+    case "cycle-of-cyclic-only":
+      return i18n.t("Only noise in cycles has the length of one.");
     case "no-task-by-job":
       return i18n.t("By job or by full days, samples are of the whole and of no one task.");
     case "strategy-fixed":

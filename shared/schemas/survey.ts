@@ -4,6 +4,7 @@ import { minimumGroupMeasuringH } from "../acoustics/uncertainty";
 import { Can, IsoDate, LevelDb, Name, PageQuery, pageOf, Reason } from "./common";
 import { InstrumentClassName, OctaveBands } from "./evaluation";
 import { LEAST_SAMPLE_MIN } from "./run-doubts";
+import { ProtectorsToReview } from "./workplace-change";
 
 export const Strategy = z.enum(["task", "job", "full-day"]);
 export type Strategy = z.infer<typeof Strategy>;
@@ -353,6 +354,7 @@ export type MeasuringNeed = z.infer<typeof MeasuringNeed>;
 export const MeasuringNeeds = z.object({
   rows: z.array(MeasuringNeed),
   groupsCount: z.number(),
+  protectors: ProtectorsToReview,
   sites: z.array(
     z.object({
       id: z.uuid(),

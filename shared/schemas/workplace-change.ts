@@ -38,5 +38,38 @@ export const WorkplaceChangeView = z.object({
   can: Can("change"),
 });
 export type WorkplaceChangeView = z.infer<typeof WorkplaceChangeView>;
+/** Changes after which protectors in use wait for another look. */
+export const ProtectorsToReview = z.array(
+  z.object({
+    changeId: z.uuid(),
+    siteId: z.uuid(),
+    subjectName: z.string(),
+    kind: z.string(),
+    what: z.string(),
+    happenedOn: IsoDate,
+    assignmentsCount: z.number(),
+  }),
+);
+export type ProtectorsToReview = z.infer<typeof ProtectorsToReview>;
+/** Protectors chosen before a change, at which nobody has looked since. */
+export const ChosenBefore = z.object({
+  change: WorkplaceChangeView,
+  rows: z.array(
+    z.object({
+      id: z.uuid(),
+      workerId: z.uuid(),
+      workerName: z.string(),
+      employeeNumber: z.string(),
+      /** Task or area that it is for; null: everywhere. */
+      useName: z.string().nullable(),
+      innerName: z.string(),
+      outerName: z.string().nullable(),
+      fromDate: IsoDate,
+    }),
+  ),
+});
+export type ChosenBefore = z.infer<typeof ChosenBefore>;
+export const ProtectorsLookedAt = z.object({ assignmentIds: z.array(z.uuid()).min(1).max(2000) });
+
 export const WorkplaceChangePage = pageOf(WorkplaceChangeView);
 export const WorkplaceChangeFilter = PageQuery.extend({ siteId: z.uuid().optional() });

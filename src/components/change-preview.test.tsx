@@ -42,6 +42,7 @@ test("says how many days become what, and gives each worker one row for the same
       { line: "at-the-ear", after: "cant-tell-yet", days: 2 },
       { line: "protector", after: "too-much", days: 1 },
     ],
+    people: 3,
     tooMany: 0,
     changesCount: 2,
     changes: [
@@ -57,7 +58,10 @@ test("says how many days become what, and gives each worker one row for the same
     ],
   });
   expect(screen.getByRole("heading", { name: "2 days become Can’t tell yet" })).toHaveFocus();
-  expect(screen.getByText("3 days change verdict in all.")).toBeVisible();
+  expect(
+    screen.getByText(/ 40 days of 2 workers rest on this .* 3 people will be told by mail\./),
+  ).toBeVisible();
+  expect(screen.queryByText(/change verdict/)).toBeNull();
   expect(screen.getByText("1 day becomes Too much")).toBeVisible();
   const [, first, second] = screen.getAllByRole("row");
   expect(within(first!).getByRole("link", { name: "A. Holm" })).toHaveAttribute(
@@ -83,6 +87,7 @@ test("who comes over the limit is said first, and the lines’ sum is explained"
       { line: "protector", after: "too-little", days: 1359 },
       { line: "protector", after: "just-enough", days: 3592 },
     ],
+    people: 3,
     tooMany: 0,
     changesCount: 700,
     changes: [
@@ -92,8 +97,8 @@ test("who comes over the limit is said first, and the lines’ sum is explained"
   expect(
     screen.getByRole("heading", { name: "40 days become Over, 87 days become Can’t tell yet" }),
   ).toHaveFocus();
-  // 40 + 87 + 1359 + 3592 = 5078.
-  expect(screen.getByText(/5 078 changes on 4 991 days/)).toBeVisible();
+  // 40 + 87 + 1359 + 3592 = 5078, and not 4991.
+  expect(screen.getByText(/more than one line is counted in each/)).toBeVisible();
   expect(screen.getByText("3 592 days become Just enough")).toBeVisible();
   expect(screen.getByText(/1 of 700 such changes are listed/)).toBeVisible();
 });
@@ -106,6 +111,7 @@ test("where days were not looked at, the counts are lower bounds", () => {
     overDays: 0,
     cantTellDays: 1,
     tally: [{ line: "at-the-ear", after: "cant-tell-yet", days: 1 }],
+    people: 1,
     tooMany: 120,
     changesCount: 1,
     changes: [
@@ -117,6 +123,7 @@ test("where days were not looked at, the counts are lower bounds", () => {
   ).toHaveFocus();
   expect(screen.getByText("at least 1 day becomes Can’t tell yet")).toBeVisible();
   expect(screen.getByText(/120 earlier days were not looked at here/)).toBeVisible();
+  expect(screen.getByText(/1 person will be told by mail/)).toBeVisible();
 });
 
 test("nobody changes verdict: the change can still be saved", () => {
@@ -127,11 +134,13 @@ test("nobody changes verdict: the change can still be saved", () => {
     overDays: 0,
     cantTellDays: 0,
     tally: [],
+    people: 0,
     tooMany: 0,
     changesCount: 0,
     changes: [],
   });
   expect(screen.getByRole("heading", { name: "Nobody changes verdict" })).toBeVisible();
+  expect(screen.getByText(/Nobody is told by mail/)).toBeVisible();
   expect(screen.queryByRole("table")).toBeNull();
   expect(screen.getByRole("button", { name: "Save and compute anew" })).toBeVisible();
 });

@@ -1,4 +1,4 @@
-import { formatShare } from "../../shared/format/dose";
+import { formatChance, formatShare } from "../../shared/format/dose";
 import { useLocale } from "../lib/i18n";
 
 export interface Share {
@@ -19,7 +19,7 @@ export function ShareBar({
 }) {
   const locale = useLocale();
   const words = shares
-    .map((share) => `${share.label} ${formatShare(share.sharePct, locale)}`)
+    .map((share) => `${share.label} ${formatChance(share.sharePct, locale)}`)
     .join(", ");
   return (
     <div>

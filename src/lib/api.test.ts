@@ -98,6 +98,15 @@ test("a lost connection is told, and told again when it is back", async () => {
   expect(states).toEqual(["ok", "offline", "ok"]);
 });
 
+test("a server without its database is told as well, and that it is back", async () => {
+  fetchStub.mockResolvedValueOnce(problem(503, { code: "database-down", title: "database-down" }));
+  await expect(api.get("/workers", { schema: text })).rejects.toMatchObject({ status: 503 });
+  expect(connectionEvents.now()).toBe("unavailable");
+  fetchStub.mockResolvedValue(Response.json("back"));
+  await api.get("/workers", { schema: text });
+  expect(states).toEqual(["ok", "unavailable", "ok"]);
+});
+
 test("an aborted request is no lost connection", async () => {
   const aborter = new AbortController();
   aborter.abort();

@@ -14,7 +14,6 @@ import { Folio, PageBody, PageHead, Section } from "../components/page";
 import { Status } from "../components/status";
 import { CandidatesTable } from "../features/fits/candidates-table";
 import { FitForm, type FitFormHandle } from "../features/fits/fit-form";
-import { FitTestActions } from "../features/fits/fit-test-actions";
 import { FitTestsTable } from "../features/fits/fit-tests-table";
 import { needReasonText } from "../features/fits/fit-words";
 import { IssueForm, type ToIssue } from "../features/fits/issue-form";
@@ -63,6 +62,7 @@ export function Component() {
           <AtDesk
             key={desk.data.worker.id}
             desk={desk.data}
+            onSaid={setSaid}
             onIssued={(sentence) => {
               setSaid(sentence);
               void navigate(paths.fitting);
@@ -84,7 +84,16 @@ export function Component() {
   );
 }
 
-function AtDesk({ desk, onIssued }: { desk: FittingDesk; onIssued: (sentence: string) => void }) {
+function AtDesk({
+  desk,
+  onSaid,
+  onIssued,
+}: {
+  desk: FittingDesk;
+  /** What stands beside the number, for whoever looks up. */
+  onSaid: (sentence: string | null) => void;
+  onIssued: (sentence: string) => void;
+}) {
   const { i18n } = useLingui();
   const user = useUser();
   const { worker, can } = desk;
@@ -126,7 +135,20 @@ function AtDesk({ desk, onIssued }: { desk: FittingDesk; onIssued: (sentence: st
               today={today}
               sizesOf={sizesOf}
               onChoose={setChosenId}
-              onRecorded={(fit) => setToIssue({ modelId: fit.modelId, size: fit.size, fit })}
+              onRecorded={(fit) => {
+                const hasFailed = fit.hasPassed === false;
+                setToIssue(hasFailed ? null : { modelId: fit.modelId, size: fit.size, fit });
+                onSaid(
+                  hasFailed
+                    ? i18n.t(
+                        "{device} does not fit: kept as tried. Put it on anew, or try another.",
+                        {
+                          device: fit.modelName,
+                        },
+                      )
+                    : null,
+                );
+              }}
             />
             <p className="after-table">
               <TextLink
@@ -195,15 +217,12 @@ function AtDesk({ desk, onIssued }: { desk: FittingDesk; onIssued: (sentence: st
             can.issue
               ? (fit) =>
                   !fit.isVoid && (
-                    <>
-                      <TextButton
-                        aria-label={i18n.t("Issue {protector}", { protector: fit.modelName })}
-                        onClick={() => setToIssue({ modelId: fit.modelId, size: fit.size, fit })}
-                      >
-                        {i18n.t("Issue this")}
-                      </TextButton>
-                      {fit.can.change && <FitTestActions test={fit} />}
-                    </>
+                    <TextButton
+                      aria-label={i18n.t("Issue {protector}", { protector: fit.modelName })}
+                      onClick={() => setToIssue({ modelId: fit.modelId, size: fit.size, fit })}
+                    >
+                      {i18n.t("Issue this")}
+                    </TextButton>
                   )
               : undefined
           }

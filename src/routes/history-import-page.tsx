@@ -78,7 +78,12 @@ export function Component() {
         <PageHead
           way={<MeasuringWays />}
           title={view?.fileName ?? i18n.t("Import a time history")}
-          lead={view && importStateText(i18n, view.state)}
+          lead={
+            view &&
+            (isFileRefused(view)
+              ? i18n.t("The file is refused")
+              : importStateText(i18n, view.state))
+          }
         />
         {found.isError && <Failed error={found.error} onRetry={() => void found.refetch()} />}
         {view && <ImportSteps key={view.id} view={view} />}
@@ -89,6 +94,10 @@ export function Component() {
     </>
   );
 }
+
+/** Not only asked about: no answer lets this file in. */
+const isFileRefused = ({ state, report }: HistoryImportView): boolean =>
+  state === "refused" && (report?.issues.some(({ severity }) => severity === "refused") ?? false);
 
 function ImportSteps({ view }: { view: HistoryImportView }) {
   const { i18n } = useLingui();
@@ -174,7 +183,7 @@ function Mapping({ view, head }: { view: HistoryImportView; head: HistoryHead })
 
   const asked = (view.report?.issues ?? []).filter(({ severity }) => severity === "asked");
   const isAnswered = asked.every(({ code }) => answers.has(code));
-  const isRefused = view.report?.issues.some(({ severity }) => severity === "refused") ?? false;
+  const isRefused = isFileRefused(view);
   return (
     <>
       <Section id="columns" title={i18n.t("What the columns are")}>
@@ -234,7 +243,9 @@ function Mapping({ view, head }: { view: HistoryImportView; head: HistoryHead })
               report={view.report}
               timeZone={view.timeZone}
               answers={answers}
-              onAnswer={view.can.change && view.state === "refused" ? answer : undefined}
+              onAnswer={
+                view.can.change && view.state === "refused" && !isRefused ? answer : undefined
+              }
             />
             {view.can.change && view.state === "refused" && !isRefused && (
               <div className="review-actions">

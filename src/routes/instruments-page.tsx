@@ -58,7 +58,7 @@ export function Component() {
             data &&
             (overdue > 0
               ? i18n.t(
-                  "{overdue, plural, one {# instrument is} other {# instruments are}} overdue for the laboratory; their readings lose the standard’s name.",
+                  "{overdue, plural, one {# instrument is overdue for the laboratory: its readings lose the standard’s name.} other {# instruments are overdue for the laboratory: their readings lose the standard’s name.}}",
                   { overdue },
                 )
               : i18n.t("No instrument is overdue for the laboratory."))

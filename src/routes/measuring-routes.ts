@@ -7,6 +7,7 @@ const READERS = ["officer", "auditor", "supervisor"] as const;
 export const measuringRoutes: PageRoute[] = [
   { path: paths.toMeasure, lazy: () => import("./to-measure-page") },
   { path: paths.workplaceChanges, lazy: () => import("./workplace-changes-page") },
+  { path: paths.protectorsBefore(":id"), lazy: () => import("./protectors-before-page") },
   { path: paths.surveys, lazy: () => import("./surveys-page") },
   { path: paths.newSurvey, lazy: () => import("./survey-form-page"), roles: ["officer"] },
   { path: paths.survey(":id"), lazy: () => import("./survey-page") },

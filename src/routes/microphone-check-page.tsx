@@ -80,7 +80,11 @@ function NewCheck({ workerId }: { workerId: string }) {
         siteId={worker.siteId}
         models={models.data.rows
           .filter(({ isArchived }) => !isArchived)
-          .map(({ id, name }) => ({ value: id, label: name }))}
+          .map(({ id, name, data }) => ({
+            value: id,
+            label: name,
+            hasActivePart: data.active !== null,
+          }))}
         modelId={search.get("model") ?? worn?.innerModelId ?? null}
         ear={search.get("ear") === "right" ? "right" : "left"}
         tasks={tasks.data.rows

@@ -4,6 +4,7 @@ import { useState } from "react";
 import { useNavigate, useParams } from "react-router-dom";
 import { formatDate, formatInstant } from "../../shared/format/date";
 import { formatNumber } from "../../shared/format/number";
+import { withinSentence } from "../../shared/format/words";
 import type { MicrophoneCheckView } from "../../shared/schemas/microphone-check";
 import { localDate } from "../../shared/time/zone";
 import { Button, ButtonLink } from "../components/button";
@@ -32,6 +33,7 @@ import "../styles/microphone-check.css";
 /** One check: on its way, or what was found at the ear, and whether it is kept as a fit test. */
 export function Component() {
   const { i18n } = useLingui();
+  const locale = useLocale();
   const { checkId = "" } = useParams();
   const found = useQuery(checkQueries.one(checkId));
   const [isKeeping, setKeeping] = useState(false);
@@ -52,7 +54,11 @@ export function Component() {
               </>
             )
           }
-          title={view ? `${view.modelName}, ${earWord(i18n, view.ear)}` : i18n.t("Check")}
+          title={
+            view
+              ? `${view.modelName}, ${withinSentence(earWord(i18n, view.ear), locale)}`
+              : i18n.t("Check")
+          }
           lead={view && `${checkStateWord(i18n, view.state)}.`}
           actions={
             isKeepable && (
@@ -69,8 +75,9 @@ export function Component() {
         {view && <Course view={view} />}
         {view?.analysis && (
           <Section id="found" title={i18n.t("Found at this ear")}>
-            <CheckResult analysis={view.analysis} />
-            <Swap view={view} />
+            <CheckResult analysis={view.analysis}>
+              <Swap view={view} />
+            </CheckResult>
           </Section>
         )}
       </PageBody>
@@ -215,9 +222,11 @@ function Facts({ view }: { view: MicrophoneCheckView }) {
           .filter(({ durationS }) => durationS !== null)
           .map((part) => (
             <div key={part.active}>
-              <p className="beneath">
-                {part.active === "off" ? i18n.t("Active part off") : i18n.t("Active part on")}
-              </p>
+              {analysis.parts.length > 1 && (
+                <p className="beneath">
+                  {part.active === "off" ? i18n.t("Active part off") : i18n.t("Active part on")}
+                </p>
+              )}
               <Leaders
                 items={[
                   {

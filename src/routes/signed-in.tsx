@@ -27,10 +27,11 @@ function useNavigation(user: SessionUser): NavItem[] {
     (officer || auditor) && { to: paths.findings, label: i18n.t("Findings") },
     (officer || auditor) && { to: paths.toMeasure, label: i18n.t("Measuring") },
     (officer || auditor) && { to: paths.protectors, label: i18n.t("Protectors") },
-    (auditor || hasRole(user, "administrator")) && { to: paths.trail, label: i18n.t("Trail") },
+    auditor && { to: paths.trail, label: i18n.t("Trail") },
     (officer || auditor) && { to: paths.rules, label: i18n.t("Rules") },
     hasRole(user, "administrator") && { to: paths.people, label: i18n.t("People") },
     hasRole(user, "administrator") && { to: paths.sites, label: i18n.t("Sites") },
+    hasRole(user, "administrator") && !auditor && { to: paths.trail, label: i18n.t("Trail") },
     hasRole(user, "worker") && user.roles.length > 1 && { to: paths.me, label: i18n.t("My page") },
   ];
   return items.filter((item) => item !== false);

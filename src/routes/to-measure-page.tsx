@@ -1,10 +1,14 @@
 import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
+import { formatShortDate } from "../../shared/format/date";
 import { ButtonLink } from "../components/button";
-import { Folio, MarginNote, PageBody, PageHead } from "../components/page";
+import { TextLink } from "../components/link";
+import { Folio, MarginNote, PageBody, PageHead, Section } from "../components/page";
 import { NeedsTable } from "../features/surveys/needs-table";
 import { surveyQueries } from "../features/surveys/queries";
 import { RemeasureInterval } from "../features/surveys/remeasure-form";
+import { changeKindTitle } from "../features/surveys/survey-words";
+import { useLocale } from "../lib/i18n";
 import { paths } from "../paths";
 import { MeasuringWays } from "./measuring-frame";
 import { SiteChoice } from "./register-frame";
@@ -14,6 +18,7 @@ import "../styles/surveys.css";
 /** What needs measuring, and why; each group opens a survey half filled in. */
 export function Component() {
   const { i18n } = useLingui();
+  const locale = useLocale();
   const choice = useSiteChoice();
   const { data, isPending, error, refetch } = useQuery(surveyQueries.needs(choice.site?.id));
   const waiting = data?.rows.filter(({ surveyId }) => surveyId === null).length ?? 0;
@@ -65,6 +70,30 @@ export function Component() {
           error={error}
           onRetry={() => void refetch()}
         />
+        {data && data.protectors.length > 0 && (
+          <Section title={i18n.t("Protectors chosen before a change")} id="protectors">
+            <ul className="need-reasons">
+              {data.protectors.map((one) => (
+                <li key={one.changeId}>
+                  <TextLink to={paths.protectorsBefore(one.changeId)}>
+                    {i18n.t(
+                      "{count, plural, one {# protector was} other {# protectors were}} chosen before it",
+                      { count: one.assignmentsCount },
+                    )}
+                  </TextLink>{" "}
+                  <span className="beneath">
+                    {i18n.t("{subject}, {kind}, since {date}: {what}", {
+                      subject: one.subjectName,
+                      kind: changeKindTitle(i18n, one.kind),
+                      date: formatShortDate(one.happenedOn, locale),
+                      what: one.what,
+                    })}
+                  </span>
+                </li>
+              ))}
+            </ul>
+          </Section>
+        )}
       </PageBody>
       <Folio>
         {i18n.t(

@@ -34,7 +34,6 @@ import { AssignForm, assignedUse } from "../features/assignments/assign-form";
 import { AssignmentsTable } from "../features/assignments/assignments-table";
 import { FindingsTable } from "../features/findings/findings-table";
 import { findingQueries } from "../features/findings/queries";
-import { FitTestActions } from "../features/fits/fit-test-actions";
 import { FitTestsTable } from "../features/fits/fit-tests-table";
 import { IssuesTable } from "../features/fits/issues-table";
 import { fitQueries } from "../features/fits/queries";
@@ -318,11 +317,6 @@ function Fits({
           isLoading: tests.isFetchingNextPage,
           onMore: () => void tests.fetchNextPage(),
         }}
-        actions={
-          worker.can.assign
-            ? (test) => test.can.change && <FitTestActions test={test} />
-            : undefined
-        }
         empty={<Empty title={i18n.t("No fit of this worker is on record.")} />}
       />
       {worker.can.assign && worker.leftOn === null && (

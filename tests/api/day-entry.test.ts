@@ -222,7 +222,7 @@ describe("a crew's day", () => {
     const { shiftId, revision } = body.saved[0].shift;
     const correct = (more: object) =>
       client.send({
-        method: "patch",
+        method: "put",
         path: `/shifts/${shiftId}`,
         body: {
           localStart: localTime(startedAt, zone),

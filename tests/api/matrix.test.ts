@@ -157,6 +157,8 @@ const matrix: Record<string, string> = {
   "PUT /warning-signals/:id": "officer",
   "GET /workplace-changes": "officer auditor",
   "POST /workplace-changes": "officer",
+  "GET /workplace-changes/:id/protectors": "officer auditor",
+  "POST /workplace-changes/:id/protectors": "officer",
   "POST /workplace-changes/:id/strike": "officer",
   "GET /histories/:id": "officer auditor",
   "GET /histories/:id/analysis": "officer auditor",

@@ -100,7 +100,7 @@ describe("what needs measuring", () => {
       ],
     });
     await buildWorker({ site, jobId: job.id });
-    const never = { code: "never-measured", taskNames: ["Chipping"] };
+    const never = { code: "never-measured", taskNames: ["Chipping"], taskIds: [estimated.id] };
     const without = await client.get("/measuring-needs");
     expect(without.body.rows[0].reasons).toEqual([never]);
     expect(without.body.sites[0]).toMatchObject({ remeasureAfterMonths: null, revision: 1 });

@@ -71,6 +71,84 @@ describeEndpoint({
   }),
 });
 
+describeEndpoint({
+  route: "GET /workplace-changes/:id/protectors",
+  as: "auditor",
+  not: "supervisor",
+  event: null,
+  bad: null,
+  call: async (site) => ({
+    method: "get",
+    path: `/workplace-changes/${await buildChange(site)}/protectors`,
+  }),
+});
+
+/** A protector chosen for a task before the task was changed. */
+async function buildChosen(site: Site) {
+  const task = await buildTask({ site });
+  const worker = await buildWorker({ site });
+  const { id: assignmentId } = await buildAssignment({
+    worker,
+    taskId: task.id,
+    fromDate: daysFromToday(-50),
+  });
+  const changeId = await insert("workplace_changes", {
+    organizationId: site.organizationId,
+    siteId: site.id,
+    taskId: task.id,
+    kind: "machine",
+    happenedOn: daysFromToday(-3),
+    what: "new grinding wheel",
+  });
+  return { task, worker, assignmentId, changeId };
+}
+
+describeEndpoint({
+  route: "POST /workplace-changes/:id/protectors",
+  as: "officer",
+  not: "auditor",
+  event: "look-at-protectors",
+  status: 200,
+  bad: { body: { assignmentIds: [] } },
+  badField: "assignmentIds",
+  call: async (site) => {
+    const { changeId, assignmentId } = await buildChosen(site);
+    return {
+      method: "post",
+      path: `/workplace-changes/${changeId}/protectors`,
+      body: { assignmentIds: [assignmentId] },
+    };
+  },
+});
+
+test("protectors chosen before a change wait until each is looked at, whatever is measured meanwhile", async () => {
+  const site = await buildSite();
+  const client = await officerAt(site);
+  const { task, worker, changeId, assignmentId } = await buildChosen(site);
+  const everywhere = await buildWorker({
+    site,
+    jobId: (await buildJob({ site, tasks: [{ taskId: task.id, durationMin: 60 }] })).id,
+  });
+  await buildAssignment({ worker: everywhere, fromDate: daysFromToday(-50) });
+  const elsewhere = await buildWorker({ site });
+  await buildAssignment({ worker: elsewhere, fromDate: daysFromToday(-50) });
+  const chosenSince = await buildWorker({ site });
+  await buildAssignment({ worker: chosenSince, taskId: task.id, fromDate: daysFromToday(-1) });
+
+  const path = `/workplace-changes/${changeId}/protectors`;
+  const { body } = await client.get(path);
+  expect(body.rows.map(({ workerId }: { workerId: string }) => workerId).toSorted()).toEqual(
+    [worker.id, everywhere.id].toSorted(),
+  );
+  const needs = await client.get("/measuring-needs");
+  expect(needs.body.protectors).toMatchObject([{ changeId, assignmentsCount: 2 }]);
+  const looked = await client.post(path, { assignmentIds: [assignmentId] });
+  expect(looked.body.rows).toMatchObject([{ workerId: everywhere.id }]);
+  expect((await client.post(path, { assignmentIds: [assignmentId] })).status).toBe(404);
+  await client.post(path, { assignmentIds: [looked.body.rows[0].id] });
+  expect((await client.get("/measuring-needs")).body.protectors).toEqual([]);
+});
+
 const officerAt = async ({ organizationId }: Site) =>
   signInAs(await buildUser({ organizationId, roles: ["officer"] }));
 
@@ -131,6 +209,7 @@ test("a change re-opens what was measured before it and the protectors chosen on
           kind: "machine",
           what: "twice the pressure",
           happenedOn: daysFromToday(-10),
+          taskIds: [task.id],
           assignmentsCount: 1,
         },
       ],

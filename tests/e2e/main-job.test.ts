@@ -142,10 +142,12 @@ describe("the main job, through the real sign-in of each role", () => {
     await look.getByRole("button", { name: "They worked as filled in" }).click();
     await look.waitFor({ state: "hidden" });
     await page.getByRole("button", { name: "Save", exact: true }).click();
-    await page
-      .getByText(new RegExp(`^${crew?.members} saved`))
-      .first()
-      .waitFor();
+    const saved = page.getByText(new RegExp(`^${crew?.members} saved`)).first();
+    // Where the crew is still at work at this hour, the page asks whether it will end so.
+    const willEndSo = page.getByRole("button", { name: "It will end so: save" });
+    await saved.or(willEndSo).first().waitFor();
+    if (await willEndSo.isVisible()) await willEndSo.click();
+    await saved.waitFor();
     await page.getByText(/will be told at/).waitFor();
     await page.getByRole("button", { name: "Send now" }).click();
     await page.getByText(/(were|was) told/).waitFor();

@@ -80,6 +80,7 @@ export function CandidatesTable({
       id: "stock",
       head: i18n.t("In stock"),
       kind: "figure",
+      hidesOnPhone: true,
       cell: ({ stock, batteryMin, batteryLasts }) => (
         <span className="two-lines">
           {stock ?? "–"}

@@ -136,6 +136,8 @@ export function FitForm({
         onSuccess: (test) => {
           changeKey.forget();
           form.reset({ ...form.getValues(), leftDb: [], rightDb: [], note: "" });
+          // What does not fit is put on anew, or another is tried.
+          if (test.hasPassed === false) form.setFocus("leftDb");
           onRecorded(test);
         },
         onError: showFitIssuesOn(form, i18n),

@@ -1,12 +1,13 @@
 import { useLingui } from "@lingui/react";
-import type { ReactNode } from "react";
+import { type ReactNode, useState } from "react";
 import { formatShortDate } from "../../../shared/format/date";
 import { formatLevel } from "../../../shared/format/level";
 import type { FitTestView } from "../../../shared/schemas/fit";
 import { type DataColumn, DataTable, type DataTableProps } from "../../components/data-table";
-import { TextLink } from "../../components/link";
+import { TextButton, TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
 import { paths } from "../../paths";
+import { CorrectFit, StrikeFit } from "./fit-change";
 import { fitMethodWord, outcomeWord, passWord } from "./fit-words";
 
 /** Fits by date: who, which device, what came off, and whether that was enough. */
@@ -16,7 +17,7 @@ export function FitTestsTable({
   ...table
 }: {
   hidesWorker?: boolean;
-  /** What can be done with a row; nothing where there is none. */
+  /** What else can be done with a row. */
   actions?: (test: FitTestView) => ReactNode;
 } & Pick<
   DataTableProps<FitTestView>,
@@ -24,6 +25,9 @@ export function FitTestsTable({
 >) {
   const { i18n } = useLingui();
   const locale = useLocale();
+  const [changing, setChanging] = useState<{ id: string; how: "correct" | "strike" } | null>(null);
+  const changed = table.rows.find(({ id }) => id === changing?.id);
+  const canAct = table.rows.some(({ can }) => can.change);
   const device: DataColumn<FitTestView> = {
     id: "device",
     head: i18n.t("Protector"),
@@ -118,25 +122,57 @@ export function FitTestsTable({
         </span>
       ),
     },
-    ...(actions
+    ...(canAct
       ? [
           {
             id: "action",
             head: <span className="sr-only">{i18n.t("Change")}</span>,
             kind: "right",
-            cell: (test: FitTestView) => <span className="note-links is-end">{actions(test)}</span>,
+            cell: (test: FitTestView) => (
+              <span className="note-links is-end">
+                {actions?.(test)}
+                {test.can.change && (
+                  <>
+                    <TextButton
+                      aria-label={i18n.t("Correct the fit of {protector}", {
+                        protector: test.modelName,
+                      })}
+                      onClick={() => setChanging({ id: test.id, how: "correct" })}
+                    >
+                      {i18n.t("Correct")}
+                    </TextButton>
+                    <TextButton
+                      aria-label={i18n.t("Strike out the fit of {protector}", {
+                        protector: test.modelName,
+                      })}
+                      onClick={() => setChanging({ id: test.id, how: "strike" })}
+                    >
+                      {i18n.t("Strike out")}
+                    </TextButton>
+                  </>
+                )}
+              </span>
+            ),
           } satisfies DataColumn<FitTestView>,
         ]
       : []),
   ];
   return (
-    <DataTable<FitTestView>
-      {...table}
-      caption={i18n.t("Fit tests, the latest first")}
-      rowKey={({ id }) => id}
-      columns={columns}
-      isTwoLine
-      stacksOnPhone
-    />
+    <>
+      <DataTable<FitTestView>
+        {...table}
+        caption={i18n.t("Fit tests, the latest first")}
+        rowKey={({ id }) => id}
+        columns={columns}
+        isTwoLine
+        stacksOnPhone
+      />
+      {changed && changing?.how === "correct" && (
+        <CorrectFit key={changed.id} test={changed} onDone={() => setChanging(null)} />
+      )}
+      {changed && changing?.how === "strike" && (
+        <StrikeFit key={changed.id} test={changed} onDone={() => setChanging(null)} />
+      )}
+    </>
   );
 }

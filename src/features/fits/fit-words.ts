@@ -60,7 +60,7 @@ export function labelWord(i18n: I18n, method: string | null): string {
     case "percentile":
       return i18n.t("percentile rating, most users");
     case "hml":
-      return i18n.t("M");
+      return i18n.t("M of the label");
     case "us-single-number":
       return i18n.t("US number less 7");
     case "snr":

@@ -214,7 +214,7 @@ export function GroupBudget({
       />
       {best && best.decreaseDb < WORTH_NAMING_DB ? (
         <p className="group-kept">
-          {i18n.t("More measuring would gain little, at most {narrowing}.", {
+          {i18n.t("More measuring would gain little. The most would be {narrowing}.", {
             narrowing: narrowed(best),
           })}
         </p>

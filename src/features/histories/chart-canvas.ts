@@ -36,7 +36,8 @@ function readColours(element: HTMLElement): Colours {
 }
 
 const FONT = '12.5px "Atkinson Hyperlegible Next Variable", system-ui, sans-serif';
-const FIGURES = '12.5px "Atkinson Hyperlegible Mono Variable", ui-monospace, monospace';
+/** Whole pixels: the chart library scales no others for a fine screen. */
+const FIGURES = '13px "Atkinson Hyperlegible Mono Variable", ui-monospace, monospace';
 
 const CHANNEL_COLOUR: Record<HistoryChannel, Colour> = {
   laeq: "v4",

@@ -9,9 +9,9 @@ import {
   useRef,
   useState,
 } from "react";
-import { formatShare } from "../../../shared/format/dose";
 import { formatDuration } from "../../../shared/format/duration";
 import { formatLevel } from "../../../shared/format/level";
+import { formatNumber } from "../../../shared/format/number";
 import type {
   Envelope,
   HistoryAnalysis,
@@ -238,7 +238,7 @@ export function HistoryPicture({
     ...scene,
     highPct: doseAxisTopPct(Math.max(0, ...doses.map(({ dosePct }) => dosePct.at(-1) ?? 0))),
     limitText: i18n.t("limit 100 %"),
-    pctText: (pct) => formatShare(pct, locale),
+    pctText: (pct) => formatNumber(pct, 0, locale),
     lines: doses.map((dose) => {
       const bucket = Math.floor((span.toS + 1e-6) / dose.bucketS) - 1;
       const sofar = dose.dosePct[Math.min(bucket, dose.dosePct.length - 1)] ?? 0;
@@ -529,7 +529,7 @@ export function HistoryPicture({
             {linesCount > 0 && (
               <>
                 <p className="shift-caption" aria-hidden="true">
-                  {i18n.t("Dose so far")}
+                  {i18n.t("Dose so far")} <span className="unit">%</span>
                 </p>
                 <div className="shift-doses" ref={dosesAt} />
               </>

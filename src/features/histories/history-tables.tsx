@@ -349,7 +349,7 @@ export function QuartersTable({
       id: "time",
       head: i18n.t("Time"),
       isRowHead: true,
-      cell: (quarter) => <span className="mono">{rangeText(clock, quarter)}</span>,
+      cell: (quarter) => <span className="mono quarter-range">{rangeText(clock, quarter)}</span>,
     },
     {
       id: "laeq",

@@ -4,9 +4,10 @@ import { formatDate } from "../../../shared/format/date";
 import { Button } from "../../components/button";
 import { useLocale } from "../../lib/i18n";
 import { problemText } from "../../lib/problem-text";
+import { useAcknowledgeOwn } from "./changes";
 import { fitOfOwn, ownFitSentence } from "./own-fit";
 import type { OwnProtector } from "./own-protectors";
-import { ownQueries, useAcknowledgeOwn } from "./queries";
+import { ownQueries } from "./queries";
 
 /** Whether a protector fits its wearer, in one sentence. */
 export function OwnFit({ workerId, protector }: { workerId: string; protector: OwnProtector }) {

@@ -1,4 +1,4 @@
-import { queryOptions, useMutation, useQueryClient } from "@tanstack/react-query";
+import { queryOptions } from "@tanstack/react-query";
 import type { z } from "zod";
 import type { FindingPage } from "../../../shared/schemas/finding";
 import type { FitTestView, IssueView } from "../../../shared/schemas/fit";
@@ -75,30 +75,3 @@ export const ownQueries = {
       select: ({ rows }) => rows,
     }),
 };
-
-export function useReportProblem(workerId: string) {
-  const client = useQueryClient();
-  return useMutation({
-    mutationFn: ({ text, idempotencyKey }: { text: string; idempotencyKey: string }) =>
-      api.post(`/workers/${workerId}/problems`, {
-        body: { text },
-        idempotencyKey,
-        schema: ownReply<{ id: string }>("id"),
-      }),
-    onSuccess: () => client.invalidateQueries({ queryKey: ownQueries.all }),
-  });
-}
-
-/** That a device was received, said by its wearer. */
-export function useAcknowledgeOwn(workerId: string) {
-  const client = useQueryClient();
-  return useMutation({
-    mutationFn: ({ id, revision }: Pick<IssueView, "id" | "revision">) =>
-      api.post(`/issues/${id}/acknowledge`, {
-        body: {},
-        schema: ownReply<{ id: string }>("id"),
-        ifMatch: String(revision),
-      }),
-    onSettled: () => client.invalidateQueries({ queryKey: ["me", workerId] }),
-  });
-}

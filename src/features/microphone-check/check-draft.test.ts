@@ -7,9 +7,11 @@ import {
   calibrationOf,
   checkOf,
   emptyDraft,
+  filesThatCount,
   missingPlaces,
   noFiles,
   partsOf,
+  placesOf,
   typedOf,
 } from "./check-draft";
 
@@ -72,6 +74,8 @@ describe("which channel of which file is outside", () => {
     expect(missingPlaces("stereo", noFiles)).toEqual(["offOutside"]);
     expect(missingPlaces("two-files", noFiles)).toEqual(["offOutside", "offInside"]);
     expect(missingPlaces("two-files", both)).toEqual([]);
+    expect(placesOf("stereo", false)).toEqual(["offOutside"]);
+    expect(filesThatCount({ ...both, onInside: file("d") }, false)).toEqual(both);
     expect(missingPlaces("two-files", { ...both, onInside: file("d") })).toEqual(["onOutside"]);
   });
 });

@@ -80,16 +80,25 @@ export const noFiles: ChosenFiles = {
   onInside: null,
 };
 
-/** The places that a layout has, those of the active part last and optional. */
-export const placesOf = (layout: CheckDraft["layout"]): readonly FilePlace[] =>
-  layout === "stereo"
-    ? ["offOutside", "onOutside"]
-    : ["offOutside", "offInside", "onOutside", "onInside"];
+/** The places that a layout has; those of an active part, where there is one, come last and are optional. */
+export const placesOf = (
+  layout: CheckDraft["layout"],
+  hasActivePart: boolean,
+): readonly FilePlace[] => {
+  const off: readonly FilePlace[] =
+    layout === "stereo" ? ["offOutside"] : ["offOutside", "offInside"];
+  const on: readonly FilePlace[] = layout === "stereo" ? ["onOutside"] : ["onOutside", "onInside"];
+  return hasActivePart ? [...off, ...on] : off;
+};
+
+/** Files of the active part count only where the model has one. */
+export const filesThatCount = (files: ChosenFiles, hasActivePart: boolean): ChosenFiles =>
+  hasActivePart ? files : { ...files, onOutside: null, onInside: null };
 
 /** Places that still need a file: those with the part off, and the second of a pair that has its first. */
 export function missingPlaces(layout: CheckDraft["layout"], files: ChosenFiles): FilePlace[] {
   const hasOn = files.onOutside !== null || files.onInside !== null;
-  return placesOf(layout).filter(
+  return placesOf(layout, true).filter(
     (place) => files[place] === null && (place.startsWith("off") || (hasOn && layout !== "stereo")),
   );
 }

@@ -32,6 +32,7 @@ import {
   checkOf,
   emptyDraft,
   type FilePlace,
+  filesThatCount,
   missingPlaces,
   noFiles,
   partsOf,
@@ -57,7 +58,7 @@ export function MicrophoneCheckForm({
 }: {
   workerId: string;
   siteId: string;
-  models: readonly Choice[];
+  models: readonly (Choice & { readonly hasActivePart: boolean })[];
   /** Filled in: what the worker wears, and the ear that is next. */
   modelId: string | null;
   ear: MicrophoneCheckView["ear"];
@@ -77,8 +78,9 @@ export function MicrophoneCheckForm({
   const [isToneMissing, setToneMissing] = useState(false);
   const { send, progressPct, cancel } = useSendCheck(workerId);
   const type = useTypeCheck(workerId);
-  const { how, layout, calibration, correction, toneDb } = form.watch();
-  const places = placesOf(layout);
+  const { how, layout, calibration, correction, toneDb, modelId: chosenId } = form.watch();
+  const hasActivePart = models.find(({ value }) => value === chosenId)?.hasActivePart ?? false;
+  const places = placesOf(layout, hasActivePart);
 
   function choose(place: FilePlace, file: File | null) {
     setFiles((before) => ({ ...before, [place]: file }));
@@ -94,10 +96,12 @@ export function MicrophoneCheckForm({
   const submit = form.handleSubmit((draft) => {
     if (draft.modelId === null) return;
     if (draft.how === "typed") {
-      if (draft.off) type.mutate(typedOf(draft, draft.modelId, draft.off), { onSuccess: onSent });
+      const typed = { ...draft, on: hasActivePart ? draft.on : null };
+      if (draft.off) type.mutate(typedOf(typed, draft.modelId, draft.off), { onSuccess: onSent });
       return;
     }
-    const missing = missingPlaces(draft.layout, files);
+    const counted = filesThatCount(files, hasActivePart);
+    const missing = missingPlaces(draft.layout, counted);
     const needed = Object.fromEntries(
       missing.map((place) => [place, i18n.t("Choose a file first.")]),
     );
@@ -106,7 +110,7 @@ export function MicrophoneCheckForm({
     setToneMissing(calibrated === null);
     const hasFault = places.some((place) => faults[place] !== undefined && files[place] !== null);
     if (missing.length > 0 || hasFault || !calibrated) return;
-    const { parts, files: sent } = partsOf(draft, files);
+    const { parts, files: sent } = partsOf(draft, counted);
     send.mutate(
       { check: checkOf(draft, draft.modelId, parts, calibrated), files: sent },
       {
@@ -156,7 +160,7 @@ export function MicrophoneCheckForm({
         ]}
       />
       {how === "typed" ? (
-        <TypedBands form={form} />
+        <TypedBands form={form} hasActivePart={hasActivePart} />
       ) : (
         <>
           <RadioGroup
@@ -182,6 +186,7 @@ export function MicrophoneCheckForm({
           <FileFields
             places={places}
             isStereo={layout === "stereo"}
+            hasActivePart={hasActivePart}
             errors={faults}
             onChoose={choose}
           />
@@ -258,7 +263,7 @@ export function MicrophoneCheckForm({
   );
 }
 
-function TypedBands({ form }: { form: CheckForm }) {
+function TypedBands({ form, hasActivePart }: { form: CheckForm; hasActivePart: boolean }) {
   const { i18n } = useLingui();
   const outside = i18n.t("Outside");
   const inside = i18n.t("Inside");
@@ -267,7 +272,7 @@ function TypedBands({ form }: { form: CheckForm }) {
       <BandFields
         form={form}
         name="off"
-        label={i18n.t("Active part off")}
+        label={hasActivePart ? i18n.t("Active part off") : i18n.t("Octave bands")}
         note={i18n.t("Unweighted levels, dB, of both microphones at the same time.")}
         isOptional={false}
         rows={[
@@ -275,15 +280,17 @@ function TypedBands({ form }: { form: CheckForm }) {
           { key: "insideOffDb", label: inside },
         ]}
       />
-      <BandFields
-        form={form}
-        name="on"
-        label={i18n.t("Active part on")}
-        rows={[
-          { key: "outsideOnDb", label: outside },
-          { key: "insideOnDb", label: inside },
-        ]}
-      />
+      {hasActivePart && (
+        <BandFields
+          form={form}
+          name="on"
+          label={i18n.t("Active part on")}
+          rows={[
+            { key: "outsideOnDb", label: outside },
+            { key: "insideOnDb", label: inside },
+          ]}
+        />
+      )}
     </>
   );
 }

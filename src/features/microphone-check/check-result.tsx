@@ -1,4 +1,5 @@
 import { useLingui } from "@lingui/react";
+import type { ReactNode } from "react";
 import { OCTAVE_BANDS_HZ } from "../../../shared/acoustics/types";
 import { formatLevel, formatLevelChange } from "../../../shared/format/level";
 import { formatNumber } from "../../../shared/format/number";
@@ -9,7 +10,14 @@ import { useLocale } from "../../lib/i18n";
 import { activeText, reasonWord, warningText } from "./check-words";
 
 /** What was found at one ear: the rating and its uncertainty, the active check in words, cautions, picture and table. */
-export function CheckResult({ analysis }: { analysis: CheckAnalysis }) {
+export function CheckResult({
+  analysis,
+  children,
+}: {
+  analysis: CheckAnalysis;
+  /** What can be done about a caution. */
+  children?: ReactNode;
+}) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const { parDb, methodSdDb, warnings } = analysis;
@@ -21,7 +29,7 @@ export function CheckResult({ analysis }: { analysis: CheckAnalysis }) {
           <span className="not-assessed">{i18n.t("No rating comes of it.")}</span>
         ) : (
           <>
-            <b className="figure">{formatLevel(parDb, locale)} dB</b>{" "}
+            <b className="check-par">{formatLevel(parDb, locale)} dB</b>{" "}
             {i18n.t("off the A-weighted level at this ear; standard uncertainty {sd} dB", {
               sd: formatLevel(methodSdDb, locale),
             })}
@@ -38,6 +46,7 @@ export function CheckResult({ analysis }: { analysis: CheckAnalysis }) {
           {warningText(i18n, code)}
         </p>
       ))}
+      {children}
       <Pictures analysis={analysis} />
       <BandTable analysis={analysis} />
     </>
@@ -46,7 +55,7 @@ export function CheckResult({ analysis }: { analysis: CheckAnalysis }) {
 
 function Pictures({ analysis }: { analysis: CheckAnalysis }) {
   const { i18n } = useLingui();
-  const { parts, ear, isAbsolute } = analysis;
+  const { parts, ear, isAbsolute, warnings } = analysis;
   const off = parts[0]!;
   const levels: BandSeries[] = [
     {
@@ -80,7 +89,7 @@ function Pictures({ analysis }: { analysis: CheckAnalysis }) {
           lowDb={isAbsolute ? 40 : -90}
           highDb={isAbsolute ? 110 : -20}
         />
-        <Legend hasActive={on !== undefined} />
+        <Legend hasActive={on !== undefined} isSwapped={warnings.includes("channels-swapped")} />
       </figure>
       <figure>
         <figcaption>{i18n.t("Taken off, dB")}</figcaption>
@@ -117,13 +126,15 @@ function Pictures({ analysis }: { analysis: CheckAnalysis }) {
   );
 }
 
-function Legend({ hasActive }: { hasActive: boolean }) {
+function Legend({ hasActive, isSwapped }: { hasActive: boolean; isSwapped: boolean }) {
   const { i18n } = useLingui();
   return (
     <p className="picture-legend">
-      {hasActive
-        ? i18n.t("Upper ticks: outside. Lower: inside. Rings: inside, active part on.")
-        : i18n.t("Upper ticks: outside. Lower: inside. Hz beneath.")}
+      {isSwapped
+        ? i18n.t("Upper ticks: inside. Lower: outside. Hz beneath.")
+        : hasActive
+          ? i18n.t("Upper ticks: outside. Lower: inside. Rings: inside, active part on.")
+          : i18n.t("Upper ticks: outside. Lower: inside. Hz beneath.")}
     </p>
   );
 }
@@ -153,6 +164,24 @@ function BandTable({ analysis }: { analysis: CheckAnalysis }) {
     cell: ({ band }) => of(band),
   });
   const level = (db: number | null | undefined) => formatLevel(db ?? null, locale);
+  const hasReason = parts.some(({ bands }) => bands.some((band) => band.reason !== null));
+  const reason: DataColumn<BandRow> = {
+    id: "reason",
+    head: i18n.t("Says nothing, because"),
+    cell: ({ band }) =>
+      [
+        reasonWord(i18n, off.bands[band]?.reason ?? null),
+        ...parts.slice(1).flatMap((on) =>
+          on.bands[band]?.reason && off.bands[band]?.reason === null
+            ? [
+                i18n.t("active part on: {reason}", {
+                  reason: reasonWord(i18n, on.bands[band]?.reason ?? null),
+                }),
+              ]
+            : [],
+        ),
+      ].join(" "),
+  };
   const columns: DataColumn<BandRow>[] = [
     {
       id: "band",
@@ -188,23 +217,7 @@ function BandTable({ analysis }: { analysis: CheckAnalysis }) {
           ),
         ]
       : []),
-    {
-      id: "reason",
-      head: i18n.t("Says nothing, because"),
-      cell: ({ band }) =>
-        [
-          reasonWord(i18n, off.bands[band]?.reason ?? null),
-          ...parts.slice(1).flatMap((on) =>
-            on.bands[band]?.reason && off.bands[band]?.reason === null
-              ? [
-                  i18n.t("active part on: {reason}", {
-                    reason: reasonWord(i18n, on.bands[band]?.reason ?? null),
-                  }),
-                ]
-              : [],
-          ),
-        ].join(" "),
-    },
+    ...(hasReason ? [reason] : []),
   ];
   return (
     <DataTable<BandRow>

@@ -30,9 +30,9 @@ test("an active check in words: passed, failed with its bands, or neither", () =
 });
 
 test("a failure says what to do, with its figures", () => {
-  expect(
-    failureText(i18n, "rates-differ", { outsideHz: 48_000, insideHz: 44_100 }, "en"),
-  ).toMatch(/48.000 Hz outside, 44.100 Hz inside/);
+  expect(failureText(i18n, "rates-differ", { outsideHz: 48_000, insideHz: 44_100 }, "en")).toMatch(
+    /48.000 Hz outside, 44.100 Hz inside/,
+  );
   expect(failureText(i18n, "channel-dead", { channel: "inside" }, "en")).toContain("inside");
   expect(failureText(i18n, "too-short", { foundS: 2.04, neededS: 5 }, "en")).toContain("2.0 s");
   // A file's own faults have their own words.

@@ -8,18 +8,27 @@ export const ACCEPT = ".wav,audio/wav,audio/x-wav";
 export function FileFields({
   places,
   isStereo,
+  hasActivePart,
   errors,
   onChoose,
 }: {
   places: readonly FilePlace[];
   isStereo: boolean;
+  hasActivePart: boolean;
   errors: Readonly<Partial<Record<FilePlace, string>>>;
   onChoose: (place: FilePlace, file: File | null) => void;
 }) {
   const { i18n } = useLingui();
-  const labels: Record<keyof ChosenFiles, string> = {
+  const passive = {
+    offOutside: isStereo ? i18n.t("Recording") : i18n.t("Outside"),
+    offInside: i18n.t("Inside"),
+  };
+  const active = {
     offOutside: isStereo ? i18n.t("Active part off") : i18n.t("Active part off, outside"),
     offInside: i18n.t("Active part off, inside"),
+  };
+  const labels: Record<keyof ChosenFiles, string> = {
+    ...(hasActivePart ? active : passive),
     onOutside: isStereo ? i18n.t("Active part on") : i18n.t("Active part on, outside"),
     onInside: i18n.t("Active part on, inside"),
   };

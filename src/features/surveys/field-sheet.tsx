@@ -77,6 +77,12 @@ export function FieldSheetPage({
     .map(({ workerId }) => survey.peopleNames[workerId]?.name)
     .filter(Boolean)
     .join(", ");
+  const instruments = [...new Set(survey.reservations.map(({ instrumentId }) => instrumentId))]
+    .flatMap((id) => {
+      const { name, serialNumber } = survey.instrumentNames[id] ?? {};
+      return name ? [`${name}, ${serialNumber}`] : [];
+    })
+    .join("; ");
   const facts = [
     [i18n.t("Group"), survey.jobName],
     [i18n.t("Site"), siteName],
@@ -87,6 +93,7 @@ export function FieldSheetPage({
     ],
     ...(survey.strategy === "task" && drawn ? [[i18n.t("Whom to measure"), drawn]] : []),
     ...(reserve ? [[i18n.t("In reserve"), reserve]] : []),
+    ...(instruments ? [[i18n.t("Instruments"), instruments]] : []),
   ];
   return (
     <article className="field-sheet" aria-label={subject.title}>
@@ -114,7 +121,7 @@ export function FieldSheetPage({
               <th scope="col">{i18n.t("At least")}</th>
               <th scope="col">{i18n.t("Instrument")}</th>
               <th scope="col">{i18n.t("Begin")}</th>
-              <th scope="col">{i18n.t("End")}</th>
+              <th scope="col">{i18n.t("Ended at")}</th>
               <th scope="col">LAeq, dB</th>
               <th scope="col">LCeq, dB</th>
               <th scope="col">LCpeak, dB</th>

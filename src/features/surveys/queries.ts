@@ -1,4 +1,9 @@
-import { infiniteQueryOptions, queryOptions } from "@tanstack/react-query";
+import {
+  infiniteQueryOptions,
+  queryOptions,
+  useMutation,
+  useQueryClient,
+} from "@tanstack/react-query";
 import {
   MeasuringNeeds,
   type Strategy,
@@ -6,7 +11,7 @@ import {
   SurveyPage,
   SurveyPlan,
 } from "../../../shared/schemas/survey";
-import { WorkplaceChangePage } from "../../../shared/schemas/workplace-change";
+import { ChosenBefore, WorkplaceChangePage } from "../../../shared/schemas/workplace-change";
 import { api } from "../../lib/api";
 
 interface PlanOf {
@@ -60,6 +65,12 @@ export const surveyQueries = {
 
 export const workplaceChangeQueries = {
   all: ["workplace-changes"] as const,
+  protectors: (id: string) =>
+    queryOptions({
+      queryKey: [...workplaceChangeQueries.all, "protectors", id],
+      queryFn: ({ signal }) =>
+        api.get(`/workplace-changes/${id}/protectors`, { schema: ChosenBefore, signal }),
+    }),
   list: (siteId?: string) =>
     infiniteQueryOptions({
       queryKey: [...workplaceChangeQueries.all, siteId ?? null],
@@ -73,3 +84,19 @@ export const workplaceChangeQueries = {
       getNextPageParam: (page) => page.next,
     }),
 };
+
+export function useLookAtProtectors(changeId: string) {
+  const client = useQueryClient();
+  return useMutation({
+    mutationFn: ({ assignmentIds, key }: { assignmentIds: readonly string[]; key: string }) =>
+      api.post(`/workplace-changes/${changeId}/protectors`, {
+        body: { assignmentIds },
+        schema: ChosenBefore,
+        idempotencyKey: key,
+      }),
+    onSuccess: (view) => {
+      client.setQueryData(workplaceChangeQueries.protectors(changeId).queryKey, view);
+      void client.invalidateQueries({ queryKey: ["measuring-needs"] });
+    },
+  });
+}

@@ -173,6 +173,31 @@ test("is filled in from what the standard asks, and saved as it stands", async (
   });
 });
 
+test("how the noise runs decides how long a sample lasts, and less than is asked for is said", async () => {
+  const { bodies } = serve();
+  const onSaved = show();
+  const pattern = screen.getByLabelText("How the noise of Grinding runs");
+  // A third of its 100 minutes, in whole ones.
+  await userEvent.selectOptions(pattern, "fluctuating");
+  expect(screen.getByLabelText("Minutes of each sample of Grinding")).toHaveValue("34");
+  await userEvent.selectOptions(pattern, "cyclic");
+  await userEvent.type(screen.getByLabelText("Minutes of a cycle of Grinding"), "4");
+  // Three whole cycles.
+  const minutes = screen.getByLabelText("Minutes of each sample of Grinding");
+  await waitFor(() => expect(minutes).toHaveValue("12"));
+  await userEvent.clear(minutes);
+  await userEvent.type(minutes, "6");
+  expect(screen.getByText(/Below what the standard asks for: 3 × 12 min/)).toBeVisible();
+  await userEvent.click(screen.getByText("Save"));
+  await waitFor(() => expect(onSaved).toHaveBeenCalledOnce());
+  expect(bodies[0]).toMatchObject({
+    targets: [
+      { taskId: grinding, sampleMin: 6, pattern: "cyclic", cycleMin: 4 },
+      { taskId: rigging, sampleMin: 5, pattern: "steady", cycleMin: null },
+    ],
+  });
+});
+
 test("another strategy asks for another plan with the same seed; drawing again asks for a new seed", async () => {
   const { asked, bodies } = serve();
   const onSaved = show();

@@ -294,7 +294,9 @@ function askedOf(
     cycleMin: figure(cycleMin),
     samplesDb: [],
   });
-  return { samplesCount: sampleCount, sampleMin, reasons: [...reasons] };
+  // A third of a task is seldom a whole minute, and a plan is made in whole ones.
+  const planned = pattern === "fluctuating" ? Math.ceil(sampleMin - 1e-9) : sampleMin;
+  return { samplesCount: sampleCount, sampleMin: planned, reasons: [...reasons] };
 }
 
 /** Fewer samples than are asked for, or shorter ones. */
@@ -447,7 +449,7 @@ function TargetsField({
                             ))}
                           </select>
                           {target.pattern === "cyclic" && (
-                            <label className="survey-cycle">
+                            <span className="survey-cycle">
                               {i18n.t("Minutes of a cycle")}
                               <NumberInput
                                 aria-label={i18n.t("Minutes of a cycle of {task}", { task: name })}
@@ -456,7 +458,7 @@ function TargetsField({
                                   choosePattern(index, { pattern: "cyclic", cycleMin })
                                 }
                               />
-                            </label>
+                            </span>
                           )}
                         </span>
                       )}

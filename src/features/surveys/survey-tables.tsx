@@ -53,7 +53,7 @@ export function ResultsTable({ survey }: { survey: SurveyDetail }) {
         },
         {
           id: "range",
-          head: i18n.t("Range"),
+          head: i18n.t("Spread"),
           unit: "dB",
           kind: "figure",
           cell: ({ rangeDb }) => formatLevel(rangeDb, locale),

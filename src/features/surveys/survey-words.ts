@@ -77,7 +77,7 @@ export function stateTitle(i18n: I18n, state: State): string {
     case "planned":
       return i18n.t("Planned");
     case "measuring":
-      return i18n.t("Measuring");
+      return i18n.t("Being measured");
     case "done":
       return i18n.t("Done");
     case "struck":
@@ -148,7 +148,7 @@ export function notCountedWords(i18n: I18n, why: NonNullable<SurveySample["notCo
     case "no-laeq":
       return i18n.t("No energy mean: a 5 dB average can’t be a sample");
     case "of-no-target":
-      return i18n.t("Of nothing that this survey samples; draw its tasks under its time history");
+      return i18n.t("It belongs to none of this survey’s tasks; draw them under its time history");
   }
 }
 

@@ -209,6 +209,8 @@ export function actionWord(i18n: I18n, action: string): string {
       return i18n.t("Rules for fit tests changed");
     case "record-workplace-change":
       return i18n.t("Entered");
+    case "look-at-protectors":
+      return i18n.t("Protectors looked at, still right");
     case "strike-workplace-change":
       return i18n.t("Struck out");
     case "set-survey-state":
