@@ -520,6 +520,7 @@ export const HISTORIES: readonly DemoHistory[] = [
   shift("kettle-bend", ["2877", "2880"], 4, 0.2, { brackets: "all" }),
   shift("kettle-bend", ["2899", "2903", "2907"], 6, 0, { brackets: "all" }),
   shift("kettle-bend", ["2891", "2893", "2896"], 10, -0.2, { brackets: "all" }),
+  shift("kettle-bend", ["2951", "2954"], 16, 0.1, { brackets: "all" }),
 ];
 
 /** What was recorded at a task to say how its noise spreads over the bands; the audio went once that was known. */

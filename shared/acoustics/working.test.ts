@@ -92,6 +92,30 @@ describe("the equations end in the evaluation's own numbers", () => {
     expect(row?.cells[1]).toEqual({ kind: "level", db: evaluationOf(vector).atEarDb });
   });
 
+  test("each day by another method cites its own document, the step only those that govern", () => {
+    const vector = named("sampled tasks");
+    const { steps } = workingOf(vector);
+    const step = steps.find(({ title }) => title.id === "What the protector does, while worn");
+    const days = steps.find(({ title }) => title.id.startsWith("The day at the ear"))?.tables[1];
+    const governing = days?.rows.find(({ isEmphasized }) => isEmphasized);
+    const others = days?.rows.filter(({ isEmphasized }) => !isEmphasized) ?? [];
+    const cited = (row: typeof governing) => {
+      const cell = row?.cells[2];
+      return cell?.kind === "list"
+        ? cell.values.flatMap((one) => (one.kind === "source" ? one.source.id : []))
+        : [];
+    };
+    expect(days?.columns.map(({ title }) => title?.id)).toEqual([
+      "Method",
+      evaluationOf(vector).atEarActiveDb === null ? "Day at the ear" : "Day at the ear, off",
+      "Source",
+      undefined,
+    ]);
+    expect(step?.sources.map(({ id }) => id)).toEqual(expect.arrayContaining(cited(governing)));
+    expect(cited(others.find(({ id }) => id === "us-single-number"))).toEqual(["osha-1910.95"]);
+    expect(step?.sources.map(({ id }) => id)).not.toContain("osha-1910.95");
+  });
+
   test("shares of the uncertainty make a whole", () => {
     const step = workingOf(named("sampled tasks")).steps.find(
       ({ title }) => title.id === "How sure that is",

@@ -90,9 +90,7 @@ export function RecordForm<
         <FormProblem error={record ? change.error : create.error} />
         <FormActions>
           <SubmitButton isBusy={create.isPending || change.isSaving}>{i18n.t("Save")}</SubmitButton>
-          <Button onClick={onLeave}>
-            {record ? i18n.t("Leave as it was") : i18n.t("Cancel")}
-          </Button>
+          <Button onClick={onLeave}>{record ? i18n.t("Leave as it was") : i18n.t("Cancel")}</Button>
         </FormActions>
       </Form>
       {change.conflict && (

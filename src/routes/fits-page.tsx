@@ -29,7 +29,7 @@ export function Component() {
       <PageBody>
         <PageHead
           way={<ProtectorWays />}
-          title={i18n.t("Fits")}
+          title={i18n.t("Fit tests")}
           lead={i18n.t(
             "What protectors take off on the people who wear them, beside what their labels say.",
           )}

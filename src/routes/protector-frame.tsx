@@ -10,7 +10,7 @@ export function ProtectorWays() {
   const items = [
     { to: paths.protectors, label: i18n.t("Register"), isFor: true },
     { to: paths.fitting, label: i18n.t("Fit and issue"), isFor: hasRole(user, "officer") },
-    { to: paths.fits, label: i18n.t("Fits"), isFor: hasRole(user, "officer", "auditor") },
+    { to: paths.fits, label: i18n.t("Fit tests"), isFor: hasRole(user, "officer", "auditor") },
   ].filter(({ isFor }) => isFor);
   return (
     <span className="ways">

@@ -314,7 +314,7 @@ export function Component() {
                     {i18n.t("Discard what is typed")}
                   </Button>
                   <Button size="worker" onClick={() => setDiscarding(false)}>
-                    {i18n.t("Keep it")}
+                    {i18n.t("Keep what is typed")}
                   </Button>
                 </>
               ) : (

@@ -75,20 +75,20 @@ export function Component() {
             <ul className="need-reasons">
               {data.protectors.map((one) => (
                 <li key={one.changeId}>
-                  <TextLink to={paths.protectorsBefore(one.changeId)}>
-                    {i18n.t(
-                      "{count, plural, one {# protector was} other {# protectors were}} chosen before it",
-                      { count: one.assignmentsCount },
-                    )}
-                  </TextLink>{" "}
-                  <span className="beneath">
+                  <span>
                     {i18n.t("{subject}, {kind}, since {date}: {what}", {
                       subject: one.subjectName,
                       kind: changeKindTitle(i18n, one.kind),
                       date: formatShortDate(one.happenedOn, locale),
                       what: one.what,
                     })}
-                  </span>
+                  </span>{" "}
+                  <TextLink to={paths.protectorsBefore(one.changeId)}>
+                    {i18n.t(
+                      "{count, plural, one {# protector was} other {# protectors were}} chosen before it",
+                      { count: one.assignmentsCount },
+                    )}
+                  </TextLink>
                 </li>
               ))}
             </ul>

@@ -22,7 +22,7 @@ const WIDE_PX: Widths = {
   ear: 120,
   strip: 178,
   outside: 118,
-  word: 120,
+  word: 124,
 };
 /** Under a rule of doses: a figure and its verdict beside one another, and at the ear neither verdict nor uncertainty. */
 const DOSE_PX: Pick<Widths, "ear" | "outside" | "word"> = { ear: 96, outside: 138, word: 132 };

@@ -76,7 +76,7 @@ export function FitDistribution({
     },
     {
       id: "count",
-      head: i18n.t("Fits"),
+      head: i18n.t("Tested"),
       unit: i18n.t("people"),
       kind: "figure",
       sortValue: ({ count }) => count,

@@ -17,7 +17,7 @@ export function OwnFit({ workerId, protector }: { workerId: string; protector: O
   if (!data) return <>&nbsp;</>;
   const test = fitOfOwn(data, protector);
   const sentence = ownFitSentence(i18n, locale, test);
-  return test?.hasPassed === false ? <b className="is-fault">{sentence}</b> : <>{sentence}</>;
+  return test?.hasPassed === false ? <b className="is-fault">{sentence}</b> : sentence;
 }
 
 /** Devices that were handed out and not said to be received yet, each with the one thing to do. */
@@ -32,7 +32,7 @@ export function AcknowledgeOwn({ workerId }: { workerId: string }) {
         ?.filter(({ can }) => can.acknowledge)
         .map((issue) => (
           <div key={issue.id} className="me-receipt">
-            <p>
+            <p id={`receipt-${issue.id}`}>
               {i18n.t("You were given {protector} on {date}.", {
                 protector: issue.modelName,
                 date: formatDate(issue.issuedOn, locale),
@@ -42,13 +42,17 @@ export function AcknowledgeOwn({ workerId }: { workerId: string }) {
             </p>
             <Button
               size="worker"
-              isBusy={acknowledge.isPending}
+              aria-describedby={`receipt-${issue.id}`}
+              isBusy={acknowledge.isPending && acknowledge.variables.id === issue.id}
               onClick={() => acknowledge.mutate(issue)}
             >
               {i18n.t("Yes, I have it")}
             </Button>
           </div>
         ))}
+      <p className="me-note" role="status">
+        {acknowledge.isSuccess && i18n.t("Thank you, that is noted.")}
+      </p>
       {acknowledge.error && (
         <p className="field-error" role="alert">
           {problemText(i18n, acknowledge.error)}

@@ -49,7 +49,10 @@ export function doubtSentence(i18n: I18n, code: string, params: Params, locale: 
             "It ran for {duration}; at least {least} are asked for, unless the task itself is shorter (ISO 9612:2009, 9.3). Is it?",
             values,
           )
-        : i18n.t("It ran for {duration}; the survey planned {least}.", values);
+        : i18n.t(
+            "It ran for {duration}; at least {least} are wanted, by the survey’s plan or by ISO 9612:2009, 9.3.",
+            values,
+          );
     }
     case "field-check-missing":
       return i18n.t("A field check is missing; ISO 9612 asks for one before and one after (12.2).");

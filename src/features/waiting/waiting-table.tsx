@@ -57,6 +57,11 @@ function actionOf(
       return facts.calibrationFailedOn
         ? { label: i18n.t("Open it"), to: paths.finding(id) }
         : { label: i18n.t("Book"), to: paths.instruments };
+    case "fit-failed":
+    case "fit-due":
+      return worker
+        ? { label: i18n.t("Test the fit"), to: paths.fittingOf(worker.id) }
+        : { label: i18n.t("Open it"), to: paths.finding(id) };
     default:
       return { label: i18n.t("Open it"), to: paths.finding(id) };
   }
