@@ -713,6 +713,17 @@ describe("an issue", () => {
   });
 });
 
+test("an assignment carries its size and the level of what plays under it", async () => {
+  const { worker, client, muff } = await openDesk();
+  const path = `/workers/${worker.id}/assignments`;
+  const body = { innerModelId: muff.id, fromDate: today, size: "L", audioDb: 76.5 };
+  expect((await client.post(path, { ...body, audioDb: 140 })).body.issues).toMatchObject([
+    { path: ["audioDb"], code: "too_big" },
+  ]);
+  expect((await client.post(path, body)).body).toMatchObject({ size: "L", audioDb: 76.5 });
+  expect((await client.get(path)).body.rows).toMatchObject([{ size: "L", audioDb: 76.5 }]);
+});
+
 describe("refusals", () => {
   test("their reasons are read by officers and stand nowhere else", async () => {
     const { site, worker, client, muff } = await openDesk();
