@@ -8,6 +8,7 @@ import { PEOPLE } from "../demo/people";
 import { INSTRUMENTS, ORGANIZATION, SITES, type SiteKey } from "../demo/programme";
 import { daysBetween } from "./calendar";
 import { computeDays, enterDay, staleDays, storeDays } from "./days";
+import { layOutFits } from "./fits";
 import { layOutHistories } from "./histories";
 import { measureBeforehand, measureSince, sendOutToday } from "./measurements";
 import { leaveSomeToTell, markSent, tellInThePast } from "./notices";
@@ -96,6 +97,7 @@ export async function layOutDemo({
   await measureSince(demo);
   await layOutHistories(demo, story);
   await layOutRecordings(demo);
+  await layOutFits(demo);
   await compute(await staleDays(demo), new Date(now.getTime() - 60_000));
   await sendOutToday(demo, now);
   await tellOfCalibration(demo);
