@@ -147,7 +147,12 @@ async function writeNotices(
      ON CONFLICT (entry_id, recipient_id, audience) DO NOTHING`,
     [organizationId, siteId, entryId, notBefore, JSON.stringify(notices)],
   );
-  const noticeOf = new Map(notices.map((notice) => [keyOf(notice), notice.id]));
+  // A person who is told of a correction by this entry hears in the same mail what is new.
+  const ofEntry = await rows<Told & { id: string }>(
+    `SELECT id, recipient_id AS "recipientId", audience FROM notices WHERE entry_id = :entryId`,
+    { entryId },
+  );
+  const noticeOf = new Map(ofEntry.map((notice) => [keyOf(notice), notice.id]));
   await execute(
     `INSERT INTO notice_items (organization_id, notice_id, finding_id, worker_id, date, result_id)
      SELECT $1, x."noticeId", x."findingId", x."workerId", x.date, x."resultId"
@@ -157,7 +162,7 @@ async function writeNotices(
       JSON.stringify(items.map((item) => ({ ...item, noticeId: noticeOf.get(keyOf(item)) }))),
     ],
   );
-  for (const { id } of notices) await queueNotice(organizationId, id, notBefore);
+  for (const id of new Set(noticeOf.values())) await queueNotice(organizationId, id, notBefore);
 }
 
 export const queueNotice = (organizationId: string, noticeId: string, runAt: Date) =>

@@ -272,6 +272,34 @@ describe("the outbox", () => {
     expect(correction?.text).not.toMatch(/Give |protector before/);
   });
 
+  test("a correction and news of one saving are one mail to each", async () => {
+    const { client, entryId, notices, send, save, row, workers, officer, saved, task } =
+      await buildNotices();
+    await client.post(`/entries/${entryId}/notices/actions`, { action: "send-now" });
+    for (const notice of await notices()) await send(notice);
+    // The first worker's findings are forgotten, as if that day had been quiet: for them the next saving is news.
+    await select(
+      "DELETE FROM notice_items WHERE worker_id = $1 AND finding_id IN (SELECT id FROM findings WHERE kind = 'no-protector')",
+      [workers[0]!.id],
+    );
+    const tasks = [{ taskId: task.id, durationMin: 300 }];
+    const corrected = await save(
+      workers.map(({ id }, place) => {
+        const { shiftId, revision } = saved.body.saved[place].shift;
+        return row(id, { shiftId, revision, reason: "went home", lengthMin: 300, tasks });
+      }),
+    );
+    expect(corrected.body).toMatchObject({ refused: [], notices: { people: 3 } });
+    const waiting = (await notices()).filter(({ state }) => state === "waiting");
+    expect(waiting.map(({ audience }) => audience)).toEqual(["officer", "supervisor", "worker"]);
+    await select("UPDATE notices SET not_before = now() WHERE state = 'waiting'");
+    for (const notice of waiting) await send(notice);
+    const [, correction, ...more] = await mailbox.mails({ to: officer.email });
+    expect(more).toEqual([]);
+    expect(correction?.text).toContain("R. Szabó");
+    expect(correction?.text).toContain("D. Tavernor");
+  });
+
   test("a peak corrected after sending is told too, though no 8-hour level moved", async () => {
     const { client, entryId, organizationId, notices, send, task } = await buildNotices({
       peakDb: 136,
