@@ -24,6 +24,14 @@ export const measuringRoutes: PageRoute[] = [
   { path: paths.historyImports, lazy: () => import("./history-imports-page") },
   { path: paths.history(":id"), lazy: () => import("./history-page") },
   { path: paths.historyImport(":id"), lazy: () => import("./history-import-page") },
+  {
+    path: paths.microphoneCheck(":id"),
+    lazy: () => import("./microphone-check-page"),
+  },
+  {
+    path: paths.microphoneResult(":id", ":checkId"),
+    lazy: () => import("./microphone-result-page"),
+  },
   { path: paths.recordings, lazy: () => import("./recordings-page") },
   { path: paths.recording(":id"), lazy: () => import("./recording-page") },
 ];

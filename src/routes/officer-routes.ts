@@ -13,16 +13,6 @@ export const officerRoutes: PageRoute[] = [
   { path: paths.newWorker, lazy: () => import("./worker-form-page"), roles: ["officer"] },
   { path: paths.changeWorker(":id"), lazy: () => import("./worker-form-page"), roles: ["officer"] },
   { path: paths.worker(":id"), lazy: () => import("./worker-page") },
-  {
-    path: paths.microphoneCheck(":id"),
-    lazy: () => import("./microphone-check-page"),
-    roles: ["officer", "auditor"],
-  },
-  {
-    path: paths.microphoneResult(":id", ":checkId"),
-    lazy: () => import("./microphone-result-page"),
-    roles: ["officer", "auditor"],
-  },
   { path: paths.result(":id", ":date"), lazy: () => import("./result-page") },
   { path: paths.storedResult(":id"), lazy: () => import("./result-page") },
   { path: paths.shift(":id"), lazy: () => import("./shift-page") },
