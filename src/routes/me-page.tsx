@@ -1,12 +1,11 @@
 import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
-import type { ReactNode } from "react";
+import { lazy, type ReactNode, Suspense, useEffect } from "react";
 import { localDateOf } from "../../shared/format/date";
 import { Empty } from "../components/empty";
 import { Failed } from "../components/failed";
 import { PageBody, Section } from "../components/page";
 import { LastShift } from "../features/me/last-shift";
-import { MyHistory } from "../features/me/my-history";
 import { MyProtectors } from "../features/me/my-protectors";
 import { protectorsToday } from "../features/me/own-protectors";
 import { ownQueries } from "../features/me/queries";
@@ -16,6 +15,10 @@ import { useUser } from "../features/session/session";
 import { useLocale } from "../lib/i18n";
 import { usePageTitle } from "../lib/page-title";
 import "../styles/me.css";
+
+/** The picture comes beside the data that it shows: what to do does not wait for it. */
+const loadHistory = () => import("../features/me/my-history");
+const MyHistory = lazy(() => loadHistory().then(({ MyHistory }) => ({ default: MyHistory })));
 
 /** A longer title is set smaller: a phone holds about three lines of the large one. */
 const LONG_TITLE = 64;
@@ -49,6 +52,7 @@ function OwnPage({ workerId }: { workerId: string }) {
   const lastDay = days.data?.[0] ?? null;
 
   const error = worker.error ?? days.error ?? findings.error;
+  useEffect(() => void loadHistory().catch(() => undefined), []);
   const retry = () => {
     void worker.refetch();
     void days.refetch();
@@ -101,7 +105,11 @@ function OwnPage({ workerId }: { workerId: string }) {
           {part(<LastShift day={lastDay} />)}
         </Section>
         <Section title={i18n.t("My year at the ear")} id="my-year">
-          {part(<MyHistory days={days.data ?? []} assignments={worker.data?.assignments ?? []} />)}
+          <Suspense fallback={<PartLoading />}>
+            {part(
+              <MyHistory days={days.data ?? []} assignments={worker.data?.assignments ?? []} />,
+            )}
+          </Suspense>
         </Section>
         <div className="me-report">
           {worker.data?.can.report && <ReportProblem workerId={workerId} />}
