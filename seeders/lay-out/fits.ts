@@ -48,7 +48,8 @@ export async function layOutFits(demo: Demo): Promise<void> {
       : calendar.daysAgo(
           index === forgotten ? FORGOTTEN_DAYS_AGO : LATEST_DAYS_AGO + ((index * 37) % SPREAD_DAYS),
         );
-    const testedOn = wanted < hiredOn ? hiredOn : wanted;
+    const fitsDb = 29 + ((index * 5) % 9);
+    const testedOn = [wanted, hiredOn].toSorted()[1]!;
     await demo.at(calendar.instant(testedOn, "10:00"), async () => {
       const worker = (await Worker.findByPk(workerId))!;
       await recordFitTest(
@@ -59,8 +60,8 @@ export async function layOutFits(demo: Demo): Promise<void> {
           testedOn,
           method: "psychophysical",
           facts: {
-            leftDb: isLoose ? [13, 15] : [34, 35],
-            rightDb: isLoose ? [21, 20] : [35, 36],
+            leftDb: isLoose ? [13, 15] : [fitsDb, fitsDb + 1],
+            rightDb: isLoose ? [21, 20] : [fitsDb + 1, fitsDb + 2],
             methodSdDb: METHOD_SD_DB,
           },
           confidencePct: 84,

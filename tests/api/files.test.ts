@@ -113,6 +113,8 @@ describe("GET /files/:id", () => {
       startedAt: `${daysFromToday(-1)}T08:00:00Z`,
       durationMin: 6,
       levelDb: 94.6,
+      checkBeforeDb: 94,
+      checkAfterDb: 94,
       fileIds: [file.id],
     };
     const strangers = await (await roleAt(site, "officer")).post("/samples", sample);
