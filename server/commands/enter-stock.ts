@@ -1,10 +1,10 @@
-import { randomUUID } from "node:crypto";
 import type { StockMoveInput } from "../../shared/schemas/stock";
 import { recordAudit } from "../lib/audit";
 import { dateIssues, todayAt } from "../lib/calendar";
-import { execute, row } from "../lib/db";
+import { row } from "../lib/db";
 import { issue, unprocessable } from "../lib/errors";
 import type { Actor } from "../lib/policy";
+import { moveStock } from "./move-stock";
 
 /** What a kind entered by hand does to the stock. */
 const SIGN = { received: 1, lost: -1, damaged: -1, changed: -1 } as const;
@@ -29,24 +29,16 @@ export async function enterStock(
     kind === "counted"
       ? input.quantity - (await stockNow(site.id, { modelId, size, part }))
       : SIGN[kind] * input.quantity;
-  const id = randomUUID();
-  await execute(
-    `INSERT INTO stock_moves (id, organization_id, site_id, model_id, size, part, kind, quantity, moved_on, note, author_id)
-     VALUES ($1, $2, $3, $4, $5, $6, $7, $8, $9, $10, $11)`,
-    [
-      id,
-      actor.organizationId,
-      site.id,
-      modelId,
-      size,
-      part,
-      kind,
-      quantity,
-      movedOn,
-      note,
-      actor.userId,
-    ],
-  );
+  const id = await moveStock(actor, {
+    siteId: site.id,
+    modelId,
+    size,
+    part,
+    kind,
+    quantity,
+    movedOn,
+    note,
+  });
   await recordAudit(actor, {
     action: "enter-stock",
     subjectKind: "site",

@@ -1,5 +1,6 @@
+import { randomUUID } from "node:crypto";
 import type { z } from "zod";
-import type { StockMoveView } from "../../shared/schemas/stock";
+import type { StockMoveView, StockPart } from "../../shared/schemas/stock";
 import { execute, row } from "../lib/db";
 import type { Actor } from "../lib/policy";
 
@@ -7,7 +8,10 @@ interface StockMove
   extends Pick<z.infer<typeof StockMoveView>, "size" | "kind" | "quantity" | "movedOn"> {
   siteId: string;
   modelId: string;
-  issueId: string;
+  part?: z.infer<typeof StockPart>;
+  /** The device that a worker has, where it is about one. */
+  issueId?: string | null;
+  note?: string;
 }
 
 /** How many devices of a size are in a site's stock; null where the site keeps none of this model. */
@@ -24,12 +28,39 @@ export async function stockOf(
   return found?.isKept ? found.quantity : null;
 }
 
-/** A device that leaves the stock with a worker, or comes back into it. The event is that of the issue. */
-export async function moveStock(actor: Actor, move: StockMove): Promise<void> {
-  const { siteId, modelId, size, kind, quantity, issueId, movedOn } = move;
+/** What leaves the stock or comes into it, a device unless it says otherwise. The event is its caller's. Returns its id. */
+export async function moveStock(
+  actor: Actor,
+  {
+    siteId,
+    modelId,
+    size,
+    part = "device",
+    kind,
+    quantity,
+    issueId = null,
+    movedOn,
+    note = "",
+  }: StockMove,
+): Promise<string> {
+  const id = randomUUID();
   await execute(
-    `INSERT INTO stock_moves (organization_id, site_id, model_id, size, part, kind, quantity, issue_id, moved_on, author_id)
-     VALUES ($1, $2, $3, $4, 'device', $5, $6, $7, $8, $9)`,
-    [actor.organizationId, siteId, modelId, size, kind, quantity, issueId, movedOn, actor.userId],
+    `INSERT INTO stock_moves (id, organization_id, site_id, model_id, size, part, kind, quantity, issue_id, moved_on, note, author_id)
+     VALUES ($1, $2, $3, $4, $5, $6, $7, $8, $9, $10, $11, $12)`,
+    [
+      id,
+      actor.organizationId,
+      siteId,
+      modelId,
+      size,
+      part,
+      kind,
+      quantity,
+      issueId,
+      movedOn,
+      note,
+      actor.userId,
+    ],
   );
+  return id;
 }

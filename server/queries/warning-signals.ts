@@ -6,6 +6,7 @@ import type {
   WarningSignalDetail,
   WarningSignalView,
 } from "../../shared/schemas/warning-signal";
+import { todayAt } from "../lib/calendar";
 import { rows } from "../lib/db";
 import { only } from "../lib/only";
 import { type Actor, abilities, visible } from "../lib/policy";
@@ -61,7 +62,7 @@ export async function warningSignalDetail(
      ORDER BY k.name, u.inner_model_id NULLS FIRST, u.outer_model_id NULLS FIRST`,
     { siteId: signal.siteId, areaId: signal.areaId },
   );
-  const today = new Date().toISOString().slice(0, 10);
+  const today = todayAt("UTC");
   const ids = worn.flatMap(({ innerModelId, outerModelId }) => [innerModelId, outerModelId]);
   const models = new Map(
     (
