@@ -5,8 +5,31 @@ const tests = ["**/*.test.ts", "**/*.test.tsx"];
 const pages = (...names: string[]) => names.map((name) => `src/routes/${name}.tsx`);
 const features = (...names: string[]) => names.map((name) => `src/features/${name}/**`);
 
+/** Shared parts that no page of a worker shows: their words go with those of the rules, which every other page loads. */
+const beyondWorkers = [
+  "band-fields",
+  "change-preview",
+  "combobox-field",
+  "conflict-dialog",
+  "data-table",
+  "day-figures",
+  "drop-strip",
+  "file-input",
+  "finding-due",
+  "finding-words",
+  "gear-field",
+  "meter-settings",
+  "notice-line",
+  "record-form",
+  "reviewed-change",
+  "spectrum-chart",
+  "spectrum-field",
+]
+  .map((name) => `src/components/${name}.tsx`)
+  .concat(["register-words", "role-word", "run-words"].map((name) => `src/lib/${name}.ts`));
+
 /**
- * The catalogue in parts, so that a page loads the words it needs (see shared/i18n/index.ts and src/router.tsx): `base` is
+ * The catalogue in parts, so that a page loads the words it needs (see shared/i18n/index.ts and src/router.tsx and src/routes/desk-pages.tsx): `base` is
  * everybody's and all that a worker's phone gets. A page whose part is not loaded would show untranslated text.
  */
 const parts: Record<string, string[]> = {
@@ -63,13 +86,20 @@ const parts: Record<string, string[]> = {
       "microphone-*-page",
     ),
   ],
-  rules: ["shared/acoustics/**", "shared/rule-sets/**"],
+  rules: ["shared/acoustics/**", "shared/rule-sets/**", ...beyondWorkers],
   day: [...features("day-entry"), ...pages("day*-page")],
   register: [
+    ...features("at-ear", "signals"),
     ...features("protectors", "rules", "areas", "tasks", "jobs", "crews", "instruments", "imports"),
+    ...features("wearing", "stock", "choosing"),
     ...pages(
       "protector*",
       "fit*-page",
+      "wearing*-page",
+      "stock-page",
+      "choose-page",
+      "slips-page",
+      "zone-sign-page",
       "rules-page",
       "site-rules-page",
       "areas-page",
@@ -105,7 +135,7 @@ export default defineConfig({
   catalogs: Object.entries(parts).map(([part, include]) => ({
     path: `<rootDir>/shared/i18n/${part}-{locale}`,
     include,
-    exclude: tests,
+    exclude: part === "base" ? [...tests, ...beyondWorkers] : tests,
   })),
   // Without origins and line numbers a moved line changes no catalogue.
   format: formatter({ origins: false, lineNumbers: false, explicitIdAsDefault: true }),

@@ -26,11 +26,14 @@ const channel = (kind: ChannelKind): HistoryChannel => ({
 let sink = 0;
 function bareLoop(): void {
   for (const { criterionLevelDb, exchangeRateDb, thresholdDb } of settings) {
+    // A dose by energy goes by tens, as 2 to the power of its level over 10 lg 2.
+    const isEnergy = exchangeRateDb === 3 && thresholdDb === null;
+    const rateDb = isEnergy ? 10 * Math.log10(2) : exchangeRateDb;
     let sum = 0;
     for (let index = 0; index < COUNT; index++) {
       const level = levelsDb[index]!;
       if (thresholdDb === null || level >= thresholdDb)
-        sum += 2 ** ((level - criterionLevelDb) / exchangeRateDb);
+        sum += 2 ** ((level - criterionLevelDb) / rateDb);
     }
     sink += Math.log10(sum);
   }

@@ -13,6 +13,8 @@ import { microphoneCheckSpectrum } from "./20261201151000-microphone-check-spect
 import { issueReason } from "./20261201152000-issue-reason";
 import { samplingPatterns } from "./20261201160000-sampling-patterns";
 import { protectorsLookedAt } from "./20261201161000-protectors-looked-at";
+import { boundsOfFigures } from "./20261201170000-bounds-of-figures";
+import { leftOutTime } from "./20261201171000-left-out-time";
 
 /** In the order in which they run. */
 export const migrations = [
@@ -31,4 +33,6 @@ export const migrations = [
   issueReason,
   samplingPatterns,
   protectorsLookedAt,
+  boundsOfFigures,
+  leftOutTime,
 ];

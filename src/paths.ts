@@ -58,10 +58,27 @@ export const paths = {
   fitting: "/protectors/fitting",
   fittingOf: (workerId: string) => `/protectors/fitting/${workerId}`,
   fits: "/protectors/fits",
+  choose: "/protectors/choose",
+  /** Protectors compared for a task's noise. */
+  chooseFor: (taskId: string) => `/protectors/choose?task=${taskId}`,
+  slips: (workerIds: readonly string[]) => `/protectors/slips?workers=${workerIds.join(",")}`,
+  stock: "/protectors/stock",
+  wearing: "/protectors/wearing",
+  wearingRound: "/protectors/wearing/round",
+  signals: "/protectors/signals",
+  newSignal: "/protectors/signals/new",
+  signal: (id: string) => `/protectors/signals/${id}`,
+  /** A protector in a task's noise by every method; `outerId` worn over it. */
+  atEar: (id: string, of: { taskId: string; outerId?: string; workerId?: string }) => {
+    const outer = of.outerId === undefined ? "" : `&with=${of.outerId}`;
+    const worker = of.workerId === undefined ? "" : `&worker=${of.workerId}`;
+    return `/protectors/${id}?task=${of.taskId}${outer}${worker}#at-ear`;
+  },
 
   rules: "/rules",
   site: (id: string) => `/rules/sites/${id}`,
   areas: "/rules/areas",
+  zoneSign: (id: string) => `/rules/areas/${id}/sign`,
   tasks: "/rules/tasks",
   task: (id: string) => `/rules/tasks/${id}`,
   jobs: "/rules/jobs",
@@ -71,6 +88,7 @@ export const paths = {
   crewSheet: "/crew-sheet",
   crewSheetOf: (crewId: string) => `/crew-sheet/${crewId}`,
   me: "/me",
+  myDay: (date: string) => `/me/days/${date}`,
   yearFile: "/year-file",
   trail: "/trail",
   people: "/people",

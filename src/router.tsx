@@ -1,6 +1,6 @@
 import type { I18n } from "@lingui/core";
 import type { QueryClient } from "@tanstack/react-query";
-import { type ComponentType, Suspense, use } from "react";
+import { Suspense } from "react";
 import {
   BrowserRouter,
   matchRoutes,
@@ -9,56 +9,17 @@ import {
   useLocation,
   useRoutes,
 } from "react-router-dom";
-import { addCatalogue, type CataloguePart } from "../shared/i18n";
-import type { RoleName } from "../shared/schemas/session";
-import { hasRole, keepLanguage, sessionQuery, useUser } from "./features/session/session";
+import { keepLanguage, sessionQuery, useUser } from "./features/session/session";
 import { readAs } from "./lib/i18n";
 import { paths } from "./paths";
 import { dayRoutes } from "./routes/day-routes";
 import { homeOf } from "./routes/home";
 import { Loading } from "./routes/loading";
-import { measuringRoutes } from "./routes/measuring-routes";
 import { officerRoutes, waitingRoutes } from "./routes/officer-routes";
-import type { PageRoute } from "./routes/page-route";
+import { LazyPage, type LoadPage, once, pageRoute, withWords } from "./routes/page-loading";
 import { peopleRoutes } from "./routes/people-routes";
-import { registerRoutes } from "./routes/register-routes";
 import { RouteErrorBoundary } from "./routes/route-error";
 import { SignedIn } from "./routes/signed-in";
-
-interface PageModule {
-  Component: ComponentType;
-}
-type LoadPage = () => Promise<PageModule>;
-
-/** Asks once for what it loads; after a failure again. */
-function once(load: LoadPage): LoadPage {
-  let loading: Promise<PageModule> | null = null;
-  return () => {
-    loading ??= load().catch((error: unknown) => {
-      loading = null;
-      throw error;
-    });
-    return loading;
-  };
-}
-
-/** One component for all pages: two addresses of one page keep what is in it. */
-function LazyPage({ load }: { load: LoadPage }) {
-  const { Component } = use(load());
-  return <Component />;
-}
-
-const pageRoute = (path: string, load: LoadPage): RouteObject => {
-  const loadOnce = once(load);
-  return { path, handle: loadOnce, element: <LazyPage load={loadOnce} /> };
-};
-
-const loadNotFound = once(() => import("./routes/not-found"));
-
-/** Somebody else's page is not there: no frame with buttons that the server would refuse. */
-function Guarded({ roles, load }: { roles: readonly RoleName[]; load: LoadPage }) {
-  return <LazyPage load={hasRole(useUser(), ...roles) ? load : loadNotFound} />;
-}
 
 function Home() {
   return <Navigate to={homeOf(useUser())} replace />;
@@ -88,24 +49,6 @@ export function createRoutes(queryClient: QueryClient, i18n: I18n): RouteObject[
     return { Component: SignedIn };
   });
 
-  /** Pages that need further parts of the catalogue than everybody's. */
-  const withWords = (
-    parts: readonly CataloguePart[],
-    pages: readonly PageRoute[],
-    roles: readonly RoleName[],
-  ): RouteObject => ({
-    children: pages.map(({ path, lazy, roles: ofPage = roles }) => {
-      const load = once(async () => {
-        const [page] = await Promise.all([
-          lazy(),
-          ...parts.map((part) => addCatalogue(i18n, part)),
-        ]);
-        return page;
-      });
-      return { path, handle: load, element: <Guarded roles={ofPage} load={load} /> };
-    }),
-  });
-
   const routes: RouteObject[] = [
     pageRoute(paths.signIn, () => import("./routes/sign-in")),
     pageRoute(paths.signedOut, () => import("./routes/signed-out")),
@@ -119,20 +62,15 @@ export function createRoutes(queryClient: QueryClient, i18n: I18n): RouteObject[
           element: <RouteErrorBoundary />,
           children: [
             pageRoute(paths.me, () => import("./routes/me-page")),
-            withWords(["office", "rules"], waitingRoutes, ["officer"]),
-            withWords(["office", "rules"], officerRoutes, ["officer", "auditor", "supervisor"]),
-            withWords(["day", "rules"], dayRoutes, ["officer"]),
-            withWords(["register", "office", "rules"], registerRoutes, [
+            withWords(i18n, ["office", "rules"], waitingRoutes, ["officer"]),
+            withWords(i18n, ["office", "rules"], officerRoutes, [
               "officer",
               "auditor",
               "supervisor",
             ]),
-            withWords(["measuring", "register", "office", "rules"], measuringRoutes, [
-              "officer",
-              "auditor",
-            ]),
-            withWords(["people", "rules"], peopleRoutes, []),
-            pageRoute("*", () => import("./routes/not-found")),
+            withWords(i18n, ["day", "rules"], dayRoutes, ["officer"]),
+            withWords(i18n, ["people", "rules"], peopleRoutes, []),
+            pageRoute("*", () => import("./routes/desk-pages")),
           ],
         },
       ],

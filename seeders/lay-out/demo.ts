@@ -14,6 +14,7 @@ import { measureBeforehand, measureSince, sendOutToday } from "./measurements";
 import { leaveSomeToTell, markSent, tellInThePast } from "./notices";
 import { writePeopleFile } from "./people-file";
 import { Demo, known, layOutProgramme } from "./programme";
+import { layOutProtection } from "./protection";
 import { layOutRecordings } from "./recordings";
 import { takeStep } from "./steps";
 import { dateStory } from "./story";
@@ -98,6 +99,7 @@ export async function layOutDemo({
   await layOutHistories(demo, story);
   await layOutRecordings(demo);
   await layOutFits(demo);
+  await layOutProtection(demo);
   await compute(await staleDays(demo), new Date(now.getTime() - 60_000));
   await sendOutToday(demo, now);
   await tellOfCalibration(demo);

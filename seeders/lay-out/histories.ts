@@ -205,6 +205,9 @@ async function layOutHistory(demo: Demo, given: DemoHistory, shift: LoggedShift)
     const history = await TimeHistory.findByPk(historyId);
     await changeHistoryStretches(officer, history!, {
       stretches: stretches.map((stretch) => HistoryStretch.parse(stretch)),
+      // The noise of the task went on while the microphone was knocked about.
+      leftOut: knocked ? { how: "like-the-rest" } : null,
+      keptReason: null,
       reason: knocked?.reason ?? null,
     });
   });

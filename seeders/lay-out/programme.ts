@@ -231,6 +231,7 @@ async function layOutWorkers(demo: Demo, actor: Actor): Promise<void> {
         leftOn: one.leftDaysAgo === undefined ? null : calendar.daysAgo(one.leftDaysAgo),
         mustWear: one.mustWear ?? false,
         personalTargetDb: one.personalTargetDb ?? null,
+        wornGear: [],
         requirementReason: one.requirementReason ?? null,
       }),
     );

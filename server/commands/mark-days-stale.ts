@@ -8,13 +8,15 @@ export interface Concerned {
   taskIds?: readonly string[];
   areaId?: string;
   modelId?: string;
+  /** Two models worn together. */
+  pair?: { innerModelId: string; outerModelId: string };
   workerId?: string;
   workerIds?: readonly string[];
 }
 
 /** SQL: the days `d` whose inputs a change touches; `value` puts a value into the query. */
 export function concernedDays(
-  { fromDate, siteId, taskId, taskIds, areaId, modelId, workerId, workerIds }: Concerned,
+  { fromDate, siteId, taskId, taskIds, areaId, modelId, pair, workerId, workerIds }: Concerned,
   value: (given: string) => string,
 ): string {
   const conditions = [`d.date >= CAST(${value(fromDate)} AS date)`];
@@ -37,6 +39,11 @@ export function concernedDays(
       `EXISTS (SELECT 1 FROM assignments a WHERE a.worker_id = d.worker_id AND a.valid @> d.date AND CAST(${model} AS uuid) IN (a.inner_model_id, a.outer_model_id))`,
     );
   }
+  if (pair)
+    conditions.push(
+      `EXISTS (SELECT 1 FROM assignments a WHERE a.worker_id = d.worker_id AND a.valid @> d.date
+         AND a.inner_model_id = ${value(pair.innerModelId)} AND a.outer_model_id = ${value(pair.outerModelId)})`,
+    );
   return conditions.join(" AND ");
 }
 

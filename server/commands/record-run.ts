@@ -1,6 +1,7 @@
 import { randomUUID } from "node:crypto";
 import type { RunCorrection, RunInput, StoredReading } from "../../shared/schemas/run";
 import { findRunDoubts, type RunDoubt } from "../../shared/schemas/run-doubts";
+import { leftOutIn, type StoredLeftOut } from "../histories/left-out";
 import { recordAudit } from "../lib/audit";
 import { execute, row, rows } from "../lib/db";
 import { AppError, issue, unprocessable } from "../lib/errors";
@@ -26,6 +27,8 @@ export interface RunRevisionFacts {
   unusual: string | null;
   doubts: readonly string[];
   readings: readonly GivenReading[];
+  /** Of its history. Undefined: as the revision before says. */
+  leftOut?: StoredLeftOut | null;
   /** ISO instants, where the run names them. */
   outAt?: string | null;
   backAt?: string | null;
@@ -49,8 +52,9 @@ export async function insertRunRevision(
   const id = randomUUID();
   await execute(
     `INSERT INTO run_revisions (id, organization_id, run_id, number, out_at, back_at, duration_min, check_before_db, check_after_db, covers, kept_reason, unusual,
-       doubts, is_void, is_return, reason, entry_id, author_id)
-     VALUES ($1, $2, $3, $4, $5, $6, $7, $8, $9, $10, $11, $12, $13::text[], $14, $15, $16, $17, $18)`,
+       doubts, is_void, is_return, reason, entry_id, author_id, left_out)
+     VALUES ($1, $2, $3, $4, $5, $6, $7, $8, $9, $10, $11, $12, $13::text[], $14, $15, $16, $17, $18,
+       CASE WHEN $19 THEN $20::jsonb ELSE (SELECT b.left_out FROM run_revisions b WHERE b.run_id = $3 AND b.number = $4 - 1) END)`,
     [
       id,
       actor.organizationId,
@@ -70,6 +74,8 @@ export async function insertRunRevision(
       reason,
       entryId,
       actor.userId,
+      facts.leftOut !== undefined,
+      facts.leftOut ? JSON.stringify(facts.leftOut) : null,
     ],
   );
   await execute(
@@ -106,10 +112,11 @@ export async function doubtsOf(
     leastMin?: number | null;
     shown?: readonly ("clipped" | "under-range")[];
     needsChecks?: boolean;
+    leftOut?: StoredLeftOut | null;
   } = {},
 ): Promise<RunDoubt[]> {
   const { checkBeforeDb, checkAfterDb, durationMin, covers } = facts;
-  const { leastMin = null, shown = [], needsChecks = false } = more;
+  const { leastMin = null, shown = [], needsChecks = false, leftOut = null } = more;
   const isOfDay = covers !== "part" && run.workerId !== null;
   return findRunDoubts({
     checkBeforeDb,
@@ -121,9 +128,20 @@ export async function doubtsOf(
     needsChecks,
     covers,
     shift: isOfDay ? await facedShift(run) : null,
+    leftOut: leftOut && durationMin !== null ? sinceLeftOut(leftOut, durationMin) : null,
     shown,
   });
 }
+
+/** A run's minutes are those that count, unless an instrument's own figures stand beside its history's. */
+export function sinceLeftOut(leftOut: StoredLeftOut, durationMin: number) {
+  const minutes = leftOutIn(leftOut, null)?.minutes ?? 0;
+  const isCountedOnly = Math.abs(durationMin - leftOut.countedMin) < SAME_MIN;
+  return { minutes, isKnown: leftOut.how !== "unknown", isInDuration: !isCountedOnly };
+}
+
+/** A length that was typed is whole minutes. */
+const SAME_MIN = 1;
 
 /** The reason why a run is kept goes with its doubts: without one there is nothing to be kept in spite of. */
 export const reasonFor = (doubts: readonly unknown[], keptReason: string | null): string | null =>
@@ -268,6 +286,7 @@ export async function correctRun(
     leastMin: await leastRunMin(run),
     shown: before.shown,
     needsChecks: run.taskId !== null || before.neededChecks,
+    leftOut: before.leftOut,
   });
   if (!isVoid) requireKeptReason(doubts, facts.keptReason);
   const revisionId = await insertRunRevision(
@@ -305,6 +324,7 @@ interface Before {
   shown: ("clipped" | "under-range")[];
   /** Its field checks were asked for, or are there. */
   neededChecks: boolean;
+  leftOut: StoredLeftOut | null;
   outAt: string | null;
   backAt: string | null;
   readings: StoredReading[];
@@ -314,7 +334,7 @@ async function readingsOf(revisionId: string): Promise<Before> {
   return only(
     await rows<Before>(
       `SELECT ARRAY(SELECT d FROM unnest(v.doubts) d WHERE d IN ('clipped', 'under-range')) AS shown,
-         'field-check-missing' = ANY (v.doubts) OR v.check_before_db IS NOT NULL AS "neededChecks",
+         'field-check-missing' = ANY (v.doubts) OR v.check_before_db IS NOT NULL AS "neededChecks", v.left_out AS "leftOut",
          ${isoInstant("v.out_at")} AS "outAt", ${isoInstant("v.back_at")} AS "backAt",
          coalesce((SELECT json_agg(json_build_object(
            'settings', json_build_object('criterionLevelDb', g.criterion_level_db, 'exchangeRateDb', g.exchange_rate_db, 'thresholdDb', g.threshold_db,

@@ -6,7 +6,7 @@ import { execute, rows } from "../lib/db";
 import { issue, notFound, unprocessable } from "../lib/errors";
 import { type Actor, visible } from "../lib/policy";
 import { WearingRound } from "../models/shop-floor";
-import { workerPolicy } from "../policies";
+import { lookPolicy } from "../policies";
 import { markDaysStale } from "./mark-days-stale";
 
 /**
@@ -60,7 +60,7 @@ async function check(
   const issues = dateIssues(["seenOn"], seenOn);
   if (seenOn > today) issues.push(issue(["seenOn"], "in-the-future", { today }));
   const workers = await rows<{ id: string; siteId: string }>(
-    `SELECT w.id, w.site_id AS "siteId" FROM workers w WHERE w.id IN (:ids) AND ${visible(workerPolicy, actor, "w")}`,
+    `SELECT w.id, w.site_id AS "siteId" FROM workers w WHERE w.id IN (:ids) AND ${visible(lookPolicy(seenOn), actor, "w")}`,
     { ids: looks.map(({ workerId }) => workerId) },
   );
   const tasks = await rows<{ id: string; siteId: string }>(

@@ -164,6 +164,7 @@ async function runFor(
     await writeHistoryReadings(actor, run.id, evaluation, settings, {
       reason: "history",
       entryId,
+      leftOut: null,
       facts: {
         covers,
         keptReason: reasonFor(codes, keptReason ?? run.keptReason),

@@ -2,6 +2,7 @@ import type { HistoryEvaluation } from "../../shared/acoustics/history";
 import type { ReadingFacts } from "../../shared/schemas/evaluation";
 import type { RunInput, StoredReading } from "../../shared/schemas/run";
 import { historyReadings } from "../histories/history-readings";
+import type { StoredLeftOut } from "../histories/left-out";
 import { execute, rows } from "../lib/db";
 import { only } from "../lib/only";
 import type { Actor } from "../lib/policy";
@@ -23,7 +24,7 @@ interface Present {
   readings: StoredReading[];
 }
 
-async function presentRevision(runId: string): Promise<Present> {
+export async function presentRevision(runId: string): Promise<Present> {
   return only(
     await rows<Present>(
       `SELECT r.revision AS number, v.duration_min AS "durationMin", v.check_before_db AS "checkBeforeDb", v.check_after_db AS "checkAfterDb", v.covers,
@@ -53,6 +54,8 @@ const MOST_READINGS = 12;
 interface Change {
   reason: string;
   entryId: string;
+  /** What is left out of the history by now. */
+  leftOut: StoredLeftOut | null;
   /** Facts of the revision that change with the readings. */
   facts?: Partial<Pick<RunRevisionFacts, "covers" | "keptReason" | "doubts">>;
 }
@@ -66,7 +69,7 @@ export async function writeHistoryReadings(
   runId: string,
   evaluation: Pick<HistoryEvaluation, "counted">,
   settings: readonly ReadingFacts["settings"][],
-  { reason, entryId, facts = {} }: Change,
+  { reason, entryId, leftOut, facts = {} }: Change,
 ): Promise<void> {
   const present = await presentRevision(runId);
   const fresh = historyReadings(evaluation, settings).map((reading) => ({
@@ -88,6 +91,7 @@ export async function writeHistoryReadings(
       // Doses count over what is counted; only where the instrument's own figures stand beside them is its time theirs.
       durationMin: kept.length > 0 ? before.durationMin : evaluation.counted.durationS / 60,
       ...facts,
+      leftOut,
       readings: [...fresh, ...kept].slice(0, MOST_READINGS),
     },
     { reason, entryId },

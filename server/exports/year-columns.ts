@@ -134,6 +134,14 @@ export const YEAR_COLUMNS: readonly YearColumn[] = [
       /* i18n */ "Dose without protection; 100 is the whole allowance; empty where the rule set has none",
   },
   {
+    name: "dose_bound",
+    sql: "r.dose_bound",
+    type: "code",
+    unit: "",
+    meaning:
+      /* i18n */ "exact, or whether the dose is only an upper or a lower bound of the true one; empty in results that did not keep it",
+  },
+  {
     name: "expanded_u_db",
     sql: "r.uncertainty_db",
     type: "number",
@@ -177,6 +185,14 @@ export const YEAR_COLUMNS: readonly YearColumn[] = [
     unit: "dB",
     meaning:
       /* i18n */ "Level at the ear while the protector is worn, in the task that decides its word",
+  },
+  {
+    name: "while_worn_bound",
+    sql: "r.while_worn_bound",
+    type: "code",
+    unit: "",
+    meaning:
+      /* i18n */ "exact, or whether the level while worn is only an upper or a lower bound of the true one; empty in results that did not keep it",
   },
   {
     name: "verdict_without_protection",

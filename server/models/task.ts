@@ -5,6 +5,7 @@ import {
   Model,
   type Sequelize,
 } from "sequelize";
+import type { Gear } from "../../shared/schemas/fit";
 import * as column from "./columns";
 
 /** A part of the day with its own noise. */
@@ -14,6 +15,7 @@ export class Task extends Model<InferAttributes<Task>, InferCreationAttributes<T
   declare siteId: string;
   declare areaId: CreationOptional<string | null>;
   declare name: string;
+  declare requiredGear: CreationOptional<Gear[]>;
   declare isArchived: CreationOptional<boolean>;
   declare revision: CreationOptional<number>;
 }
@@ -36,6 +38,7 @@ export function defineTaskModels(sequelize: Sequelize): void {
       siteId: column.uuid(),
       areaId: column.uuidOrNull(),
       name: column.text(),
+      requiredGear: column.texts(),
       isArchived: column.flag(),
       revision: column.revision(),
     },

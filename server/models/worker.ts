@@ -5,6 +5,7 @@ import {
   Model,
   type Sequelize,
 } from "sequelize";
+import type { Gear } from "../../shared/schemas/fit";
 import * as column from "./columns";
 
 /** Somebody whose exposure is on record. Why there is a personal requirement stands elsewhere. */
@@ -22,6 +23,7 @@ export class Worker extends Model<InferAttributes<Worker>, InferCreationAttribut
   declare leftOn: CreationOptional<string | null>;
   declare mustWear: CreationOptional<boolean>;
   declare personalTargetDb: CreationOptional<number | null>;
+  declare wornGear: CreationOptional<Gear[]>;
   declare revision: CreationOptional<number>;
 }
 
@@ -53,6 +55,7 @@ export function defineWorkerModels(sequelize: Sequelize): void {
       leftOn: column.dayOrNull(),
       mustWear: column.flag(),
       personalTargetDb: column.numberOrNull(),
+      wornGear: column.texts(),
       revision: column.revision(),
     },
     { sequelize, tableName: "workers" },

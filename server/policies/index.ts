@@ -1,5 +1,5 @@
 import type { Actor } from "../lib/policy";
-import { policy } from "../lib/policy";
+import { policy, visible } from "../lib/policy";
 
 interface AtSite {
   siteId: string;
@@ -154,7 +154,7 @@ export const stockPolicy = policy<AtSite>()({
   can: { change: officerAt },
 });
 
-/** Rounds: an officer makes them at the site, a supervisor among the own crews. */
+/** Rounds: an officer makes them at the site, a supervisor among the own crews; a worker speaks of themselves. */
 export const wearingPolicy = policy<AtSite>()({
   sees: (actor, r) => [
     actor.at(`${r}.site_id`, "officer", "auditor"),
@@ -162,6 +162,43 @@ export const wearingPolicy = policy<AtSite>()({
   ],
   can: { strike: officerAt },
 });
+
+/** Who enters what was seen, and who says it of themselves. */
+export const wearingEntryPolicy = policy<{ source: "round" | "own-report" }>()({
+  sees: () => [],
+  can: {
+    enter: (actor, { source }) => source === "own-report" || actor.is("officer", "supervisor"),
+  },
+});
+
+/** A date for SQL, from input that was parsed as one. */
+function dateLiteral(date: string): string {
+  if (!/^\d{4}-\d{2}-\d{2}$/.test(date)) throw new Error("a policy's date is an ISO date");
+  return `DATE '${date}'`;
+}
+
+/** Crews through which somebody may make a round on a date: a supervisor by the charge of that date. */
+export const roundPolicy = (date: string) =>
+  policy<AtSite>()({
+    sees: (actor, c) => [
+      actor.at(`${c}.site_id`, "officer"),
+      actor.is("supervisor") &&
+        `EXISTS (SELECT 1 FROM crew_supervisors s WHERE s.crew_id = ${c}.id AND s.user_id = '${actor.userId}' AND s.valid @> ${dateLiteral(date)})`,
+    ],
+    can: {},
+  });
+
+/** Workers whose wearing somebody may enter for a date: of such a crew that day, on loan or not; an officer's; oneself. */
+export const lookPolicy = (date: string) =>
+  policy<AtSite>()({
+    sees: (actor, w) => [
+      actor.at(`${w}.site_id`, "officer"),
+      actor.owns(`${w}.id`),
+      `EXISTS (SELECT 1 FROM crew_memberships m JOIN crews c ON c.id = m.crew_id
+        WHERE m.worker_id = ${w}.id AND m.valid @> ${dateLiteral(date)} AND ${visible(roundPolicy(date), actor, "c")})`,
+    ],
+    can: {},
+  });
 
 export const signalPolicy = policy<AtSite>()({
   sees: (actor, s) => [actor.at(`${s}.site_id`, "officer", "auditor", "supervisor")],
@@ -259,6 +296,8 @@ export const may = {
   readWearing: (actor: Actor) => actor.is("officer", "supervisor", "auditor"),
   /** Rounds through the shop: an officer, or a supervisor among the own crews. */
   observe: (actor: Actor) => actor.is("officer", "supervisor"),
+  /** A round, or what a worker says of themselves. */
+  enterWearing: (actor: Actor) => actor.is("officer", "supervisor", "worker"),
   /** Fits and issues as the office sees them. */
   readFitting: (actor: Actor) => actor.is("officer", "auditor"),
   acknowledge: (actor: Actor) => actor.is("officer", "worker"),

@@ -1,11 +1,15 @@
 import type { z } from "zod";
 import {
+  type CombinationView,
   type ProtectorDetail,
+  type ProtectorFileView,
   type ProtectorView,
   RegisterData,
 } from "../../shared/schemas/protector";
 import { type Actor, abilities } from "../lib/policy";
 import { protectorPolicy } from "../policies";
+import type { CombinationRow } from "../queries/protector-combinations";
+import type { ProtectorFileRow } from "../queries/protector-files";
 import type { ProtectorRevisionRow, ProtectorRow } from "../queries/protectors";
 
 function presentFacts({ id, number, effectiveFrom, data }: ProtectorRevisionRow) {
@@ -53,5 +57,34 @@ export function presentProtectorDetail(
       authorName: revision.authorName,
       createdAt: revision.createdAt.toISOString(),
     })),
+  };
+}
+
+export function presentProtectorFile(row: ProtectorFileRow): ProtectorFileView {
+  return {
+    id: row.id,
+    fileId: row.fileId,
+    title: row.title,
+    fileName: row.fileName,
+    sizeBytes: row.sizeBytes,
+    authorName: row.authorName,
+    createdAt: row.createdAt.toISOString(),
+  };
+}
+
+export function presentCombination(row: CombinationRow): CombinationView {
+  return {
+    id: row.id,
+    innerModelId: row.innerModelId,
+    innerName: row.innerName,
+    outerModelId: row.outerModelId,
+    outerName: row.outerName,
+    number: row.number,
+    effectiveFrom: row.effectiveFrom,
+    bands: row.bands,
+    reason: row.reason,
+    authorName: row.authorName,
+    createdAt: row.createdAt.toISOString(),
+    isInForce: row.isInForce,
   };
 }

@@ -46,6 +46,7 @@ export function presentTask(actor: Actor, row: TaskRow, level: TaskLevelRow | un
     areaName: row.areaName,
     zone: row.zone,
     name: row.name,
+    requiredGear: row.requiredGear,
     isArchived: row.isArchived,
     revision: row.revision,
     level: level ? presentTaskLevel(level) : null,

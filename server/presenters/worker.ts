@@ -38,6 +38,7 @@ export function presentWorker(actor: Actor, row: WorkerDetailRow): WorkerView {
     leftOn: row.leftOn,
     mustWear: row.mustWear,
     personalTargetDb: row.personalTargetDb,
+    wornGear: row.wornGear,
     requirementReason: row.requirementReason,
     crews: row.crews,
     assignments: row.assignments.map(presentAssignment),

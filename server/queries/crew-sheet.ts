@@ -164,6 +164,7 @@ async function expectedDays(
       const {
         decidingTaskId: _,
         dosePct: __,
+        doseBound: ___,
         ...figures
       } = summarizeDay(input, evaluateDay(input, governing, []), governing);
       // Nothing is stored of a day to come: the id is the worker's own, so that a list has a key.

@@ -14,6 +14,7 @@ import type {
 } from "../../shared/acoustics/types";
 import { ruleSetInForce, ruleSetVersion } from "../../shared/rule-sets";
 import type { ProtectorFacts } from "../../shared/schemas/evaluation";
+import { leftOutIn, type StoredLeftOut } from "../histories/left-out";
 import { rows } from "../lib/db";
 import { groupBy } from "../lib/group-by";
 import { activeCheckInForce, combinationInForce, fitInForce, wearingSeen } from "./own-attenuation";
@@ -293,6 +294,7 @@ interface RevisionRow {
   id: string;
   shiftId: string;
   lengthMin: number;
+  startsMs: number;
   how: Unaccounted["how"];
   quietDb: number | null;
 }
@@ -301,6 +303,8 @@ interface ReadingRow extends MeterSettings {
   runId: string;
   runRevisionId: string;
   durationMin: number;
+  source: string;
+  leftOut: StoredLeftOut | null;
   covers: ReadingInput["covers"];
   keptReason: string | null;
   kind: string;
@@ -335,8 +339,9 @@ export async function hydrateDays(
   const uses = tasks.flatMap(({ use }) => (use ? [use] : []));
   const revisions = await byId<RevisionRow>(
     shifts.map(({ revisionId }) => revisionId),
-    `SELECT id, shift_id AS "shiftId", length_min AS "lengthMin", unaccounted_how AS how, unaccounted_level_db AS "quietDb"
-     FROM shift_revisions WHERE id = ANY ($1::uuid[])`,
+    `SELECT v.id, v.shift_id AS "shiftId", v.length_min AS "lengthMin", v.unaccounted_how AS how, v.unaccounted_level_db AS "quietDb",
+       (1000 * extract(epoch FROM (s.date + v.local_start) AT TIME ZONE s.time_zone))::float8 AS "startsMs"
+     FROM shift_revisions v JOIN shifts s ON s.id = v.shift_id WHERE v.id = ANY ($1::uuid[])`,
   );
   const timed = await byId<TimedRow>(
     tasks.map(({ id }) => id),
@@ -374,8 +379,8 @@ export async function hydrateDays(
     runIds.length === 0
       ? []
       : await rows<ReadingRow>(
-          `SELECT g.id, g.run_id AS "runId", g.run_revision_id AS "runRevisionId", v.duration_min AS "durationMin", v.covers, v.kept_reason AS "keptReason",
-       i.kind, i.class, g.criterion_level_db AS "criterionLevelDb", g.exchange_rate_db AS "exchangeRateDb", g.threshold_db AS "thresholdDb",
+          `SELECT g.id, g.run_id AS "runId", g.run_revision_id AS "runRevisionId", v.duration_min AS "durationMin", g.source, v.left_out AS "leftOut",
+       v.covers, v.kept_reason AS "keptReason", i.kind, i.class, g.criterion_level_db AS "criterionLevelDb", g.exchange_rate_db AS "exchangeRateDb", g.threshold_db AS "thresholdDb",
        g.weighting, g.response, g.dose_pct AS "dosePct", g.average_db AS "averageDb", g.lceq_db AS "lceqDb", g.las_max_db AS "lasMaxDb",
        g.peak_db AS "peakDb", g.peak_weighting AS "peakWeighting"
      FROM readings g JOIN run_revisions v ON v.id = g.run_revision_id JOIN runs r ON r.id = g.run_id JOIN instruments i ON i.id = r.instrument_id
@@ -443,14 +448,20 @@ export async function hydrateDays(
               : { how: revision.how },
           readings: runRevisionIds
             .flatMap((runRevisionId) => readingsOf.get(runRevisionId) ?? [])
-            .map(toReading),
+            .map((reading) => toReading(reading, revision)),
         };
       }),
     };
   });
 }
 
-function toReading(row: ReadingRow): ReadingInput {
+function toReading(
+  row: ReadingRow,
+  { startsMs, lengthMin }: Pick<RevisionRow, "startsMs" | "lengthMin">,
+): ReadingInput {
+  const stored = row.source === "history" ? row.leftOut : null;
+  const leftOut =
+    stored && leftOutIn(stored, { fromMs: startsMs, toMs: startsMs + lengthMin * 60_000 });
   const {
     id,
     runId,
@@ -466,7 +477,8 @@ function toReading(row: ReadingRow): ReadingInput {
   return {
     id,
     runId,
-    durationMin,
+    durationMin: stored?.countedMin ?? durationMin,
+    ...(leftOut && { leftOut }),
     covers,
     keptReason,
     settings: { criterionLevelDb, exchangeRateDb, thresholdDb, weighting, response },

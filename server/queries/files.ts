@@ -1,6 +1,12 @@
 import { rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
-import { audioPolicy, historyPolicy, programmePolicy, runPolicy } from "../policies";
+import {
+  audioPolicy,
+  historyPolicy,
+  programmePolicy,
+  protectorPolicy,
+  runPolicy,
+} from "../policies";
 
 export interface FileRow {
   id: string;
@@ -12,8 +18,8 @@ export interface FileRow {
 }
 
 /**
- * Those of the files that this person may have: who may see the run, the instrument or the time history that a file
- * belongs to, who may hear a recording, and whoever sent it. The same content is kept once, so that the trail says who sent it, not the row.
+ * Those of the files that this person may have: who may see the run, the instrument, the protector or the time history
+ * that a file belongs to, who may hear a recording, and whoever sent it. The same content is kept once, so that the trail says who sent it, not the row.
  */
 export async function visibleFiles(actor: Actor, ids: readonly string[]): Promise<FileRow[]> {
   if (ids.length === 0) return [];
@@ -24,6 +30,8 @@ export async function visibleFiles(actor: Actor, ids: readonly string[]): Promis
        OR EXISTS (SELECT 1 FROM run_files x JOIN runs r ON r.id = x.run_id WHERE x.file_id = f.id AND ${visible(runPolicy, actor, "r")})
        OR EXISTS (SELECT 1 FROM instrument_calibrations c JOIN instruments i ON i.id = c.instrument_id
          WHERE c.certificate_file_id = f.id AND ${visible(programmePolicy, actor, "i")})
+       OR EXISTS (SELECT 1 FROM protector_files p JOIN protector_models m ON m.id = p.model_id
+         WHERE p.file_id = f.id AND NOT p.is_removed AND ${visible(protectorPolicy, actor, "m")})
        OR EXISTS (SELECT 1 FROM time_histories h WHERE h.file_id = f.id AND ${visible(historyPolicy, actor, "h")})
        OR EXISTS (SELECT 1 FROM recordings a WHERE a.file_id = f.id AND ${visible(audioPolicy, actor, "a")}))`,
     { ids: `{${ids.join(",")}}`, userId: actor.userId },

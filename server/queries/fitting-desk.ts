@@ -1,23 +1,14 @@
-import { lawOf } from "../../shared/acoustics/exchange-law";
-import { outsideCriterion } from "../../shared/acoustics/outside-criterion";
-import { isInNoise } from "../../shared/acoustics/protection/at-ear";
-import {
-  type Offer,
-  type OwnFit,
-  ProtectorChoice,
-  type WornGear,
-} from "../../shared/acoustics/protection/choose-protector";
-import type { DayInput, TimedTask } from "../../shared/acoustics/types";
+import { ProtectorChoice, type WornGear } from "../../shared/acoustics/protection/choose-protector";
+import type { DayInput } from "../../shared/acoustics/types";
 import type { Candidate, FitPolicyInput, FittingDesk } from "../../shared/schemas/fit";
-import type { ProtectorUse } from "../../shared/schemas/protector";
 import { todayAt } from "../lib/calendar";
 import { rows } from "../lib/db";
 import { only } from "../lib/only";
 import { type Actor, abilities, visible } from "../lib/policy";
 import type { Worker } from "../models/worker";
-import { fitPolicy, issuePolicy, protectorPolicy } from "../policies";
-import { PROTECTOR_COLUMNS, toProtector } from "./day-inputs";
+import { fitPolicy, issuePolicy } from "../policies";
 import { listFitTests } from "./fit-tests";
+import { fitsOf, lawAtEar, noisesOf, offersAt, requiredGear } from "./register-offers";
 import { FIT_POLICY } from "./sites";
 import { type WorkerNoise, workerNoise } from "./worker-noise";
 
@@ -66,15 +57,8 @@ function deskHead(workerId: string) {
 }
 
 /** What the tasks of a day ask to be worn beside a protector. */
-async function gearOf(day: DayInput | null): Promise<WornGear[]> {
-  const ids = day?.shifts.flatMap(({ tasks }) => tasks.map(({ taskId }) => taskId)) ?? [];
-  if (ids.length === 0) return [];
-  const found = await rows<{ gear: WornGear }>(
-    "SELECT DISTINCT unnest(required_gear) AS gear FROM tasks WHERE id IN (:ids)",
-    { ids },
-  );
-  return found.map(({ gear }) => gear);
-}
+const gearOf = (day: DayInput | null): Promise<WornGear[]> =>
+  requiredGear(day?.shifts.flatMap(({ tasks }) => tasks.map(({ taskId }) => taskId)) ?? []);
 
 /** The register's single devices in the order of suitability for this worker's noise. */
 async function candidates(
@@ -85,63 +69,22 @@ async function candidates(
   wornGear: readonly WornGear[],
 ): Promise<Candidate[]> {
   const offers = await offersAt(actor, worker.siteId, date);
-  const noises = day && need.outsideDb !== null ? noisesOf(day, governing.protection.adequacy) : [];
-  const law = { ...lawOf(outsideCriterion(governing)), table: null, thresholdDb: null };
-  const choice = new ProtectorChoice(offers, governing.protection, law);
-  return choice.for({
+  const noises =
+    day && need.outsideDb !== null
+      ? noisesOf(
+          day.shifts.flatMap(({ tasks }) => tasks),
+          governing.protection.adequacy,
+          day,
+        )
+      : [];
+  const fits = await fitsOf([worker.id], date);
+  return new ProtectorChoice(offers, governing.protection, lawAtEar(governing)).for({
     noises,
     personalTargetDb: worker.personalTargetDb,
     wornGear,
     wornMin: noises.reduce((sum, { durationMin }) => sum + durationMin, 0),
-    fits: await fitsOf(worker.id, date),
+    fits: fits.get(worker.id) ?? new Map(),
   });
-}
-
-type Noise = TimedTask & { level: NonNullable<TimedTask["level"]> };
-
-/** By EN 458 the tasks in noise; where the shift is judged, all of it. */
-function noisesOf(day: DayInput, adequacy: string): Noise[] {
-  return day.shifts
-    .flatMap(({ tasks }) => tasks)
-    .filter((task): task is Noise => task.level !== null && task.durationMin > 0)
-    .filter(
-      (task) => adequacy === "appendix-b" || day.mustWear || isInNoise(task, day.site.wearFromDb),
-    );
-}
-
-type OfferRow = Parameters<typeof toProtector>[0] & { stock: number | null };
-
-async function offersAt(actor: Actor, siteId: string, date: string): Promise<Offer[]> {
-  const found = await rows<OfferRow>(
-    `SELECT DISTINCT ON (m.id) ${PROTECTOR_COLUMNS},
-       (SELECT sum(k.quantity)::int FROM stock_moves k WHERE k.site_id = :siteId AND k.model_id = m.id AND k.part = 'device') AS stock
-     FROM protector_models m JOIN protector_model_revisions p ON p.model_id = m.id AND p.effective_from <= :date
-     WHERE NOT m.is_archived AND ${visible(protectorPolicy, actor, "m")} ORDER BY m.id, p.effective_from DESC, p.number DESC`,
-    { siteId, date },
-  );
-  return found.map(({ stock, ...model }) => ({
-    inner: toProtector(model),
-    outer: null,
-    combinationBands: null,
-    name: model.name,
-    worksWith: { ...NOT_STATED, ...(model.data as Partial<ProtectorUse>).worksWith },
-    isArchived: false,
-    stock,
-  }));
-}
-
-const NOT_STATED = { helmet: null, glasses: null, respirator: null };
-
-/** The fit that counts, by model. */
-async function fitsOf(workerId: string, date: string): Promise<Map<string, OwnFit>> {
-  const found = await rows<OwnFit & { modelId: string }>(
-    `SELECT DISTINCT ON (f.model_id) f.model_id AS "modelId", v.par_db AS "parDb", v.has_passed AS "hasPassed", f.tested_on::text AS "testedOn"
-     FROM fit_tests f JOIN fit_test_revisions v ON v.id = f.current_revision_id
-     WHERE f.worker_id = :workerId AND NOT f.is_void AND v.par_db IS NOT NULL AND f.tested_on <= :date
-     ORDER BY f.model_id, f.tested_on DESC, f.created_at DESC`,
-    { workerId, date },
-  );
-  return new Map(found.map(({ modelId, ...fit }) => [modelId, fit]));
 }
 
 function issuedTo(actor: Actor, workerId: string): Promise<FittingDesk["issued"]> {

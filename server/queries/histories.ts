@@ -13,6 +13,7 @@ import {
   type Stretch,
   type StretchEvaluation,
 } from "../../shared/acoustics/history";
+import type { Unaccounted } from "../../shared/acoustics/types";
 import type {
   Envelope,
   EnvelopeQuery,
@@ -41,14 +42,18 @@ export interface HistoryFacts {
   valuesCount: number;
   channels: HistoryChannel[];
   stretches: HistoryStretch[];
+  leftOut: Unaccounted | null;
 }
+
+const LEFT_OUT = `CASE WHEN v.stretches @> '[{"kind": "left-out"}]'
+  THEN json_strip_nulls(json_build_object('how', coalesce(v.left_out_how, 'unknown'), 'levelDb', v.left_out_level_db)) END AS "leftOut"`;
 
 /** What every reading of a history starts from. */
 export async function historyFacts(id: string): Promise<HistoryFacts> {
   return only(
     await rows<HistoryFacts>(
       `SELECT h.id, h.site_id AS "siteId", h.run_id AS "runId", h.instrument_id AS "instrumentId", r.date::text AS date, ${isoInstant("h.starts_at")} AS "startsAt",
-         h.interval_ms AS "intervalMs", h.values_count AS "valuesCount", h.channels, v.stretches
+         h.interval_ms AS "intervalMs", h.values_count AS "valuesCount", h.channels, v.stretches, ${LEFT_OUT}
        FROM time_histories h JOIN time_history_revisions v ON v.id = h.current_revision_id JOIN runs r ON r.id = h.run_id WHERE h.id = :id`,
       { id },
     ),
@@ -60,7 +65,7 @@ export async function historyView(actor: Actor, id: string): Promise<HistoryView
     await rows<Omit<HistoryView, "can">>(
       `SELECT h.id, h.site_id AS "siteId", s.time_zone AS "timeZone", h.run_id AS "runId", r.worker_id AS "workerId", w.name AS "workerName", r.date::text AS date,
          i.name AS "instrumentName", i.serial_number AS "serialNumber", h.file_id AS "fileId", f.name AS "fileName", ${isoInstant("h.starts_at")} AS "startsAt",
-         h.interval_ms AS "intervalMs", h.values_count AS "valuesCount", h.channels, v.stretches, rv.kept_reason AS "keptReason", h.is_void AS "isVoid", h.revision,
+         h.interval_ms AS "intervalMs", h.values_count AS "valuesCount", h.channels, v.stretches, ${LEFT_OUT}, rv.covers, rv.kept_reason AS "keptReason", h.is_void AS "isVoid", h.revision,
          u.name AS "authorName", ${isoInstant("v.created_at")} AS "savedAt",
          coalesce((SELECT json_object_agg(t.id, t.name) FROM tasks t
            WHERE t.id IN (SELECT (x->>'taskId')::uuid FROM jsonb_array_elements(v.stretches) x WHERE x ? 'taskId')), '{}') AS "taskNames",

@@ -1,6 +1,7 @@
 import type { MeterSettings, Unaccounted } from "../../shared/acoustics/types";
 import type { GridRun, SavedShift, ShiftTaskInput } from "../../shared/schemas/shift";
 import { atLocalTime } from "../../shared/time/zone";
+import { leftOutIn, type StoredLeftOut } from "../histories/left-out";
 import { rows } from "../lib/db";
 import { IS_OF_DAY, instrumentClass } from "./day-inputs";
 
@@ -69,6 +70,10 @@ interface GridRunRow extends MeterSettings {
   kind: string;
   class: string;
   durationMin: number;
+  source: string;
+  storedLeftOut: StoredLeftOut | null;
+  shiftFromMs: number | null;
+  shiftToMs: number | null;
   covers: GridRun["covers"];
   keptReason: string | null;
   dosePct: number | null;
@@ -78,6 +83,9 @@ interface GridRunRow extends MeterSettings {
   peakDb: number | null;
   peakWeighting: "A" | "C" | "Z" | null;
 }
+
+const shiftOf = ({ shiftFromMs, shiftToMs }: GridRunRow) =>
+  shiftFromMs === null || shiftToMs === null ? null : { fromMs: shiftFromMs, toMs: shiftToMs };
 
 /** Readings of personal runs on a date, by worker. */
 export async function readingsOfDay(
@@ -91,8 +99,11 @@ export async function readingsOfDay(
           `SELECT r.worker_id AS "workerId", r.id AS "runId", r.revision AS "runRevision", g.id AS "readingId", r.instrument_id AS "instrumentId", i.kind, i.class,
        v.duration_min AS "durationMin", v.covers, v.kept_reason AS "keptReason", g.criterion_level_db AS "criterionLevelDb", g.exchange_rate_db AS "exchangeRateDb",
        g.threshold_db AS "thresholdDb", g.weighting, g.response, g.dose_pct AS "dosePct", g.average_db AS "averageDb", g.lceq_db AS "lceqDb",
-       g.las_max_db AS "lasMaxDb", g.peak_db AS "peakDb", g.peak_weighting AS "peakWeighting"
+       g.las_max_db AS "lasMaxDb", g.peak_db AS "peakDb", g.peak_weighting AS "peakWeighting", g.source, v.left_out AS "storedLeftOut",
+       s.from_ms AS "shiftFromMs", s.to_ms AS "shiftToMs"
      FROM runs r JOIN run_revisions v ON v.id = r.current_revision_id JOIN readings g ON g.run_revision_id = v.id JOIN instruments i ON i.id = r.instrument_id
+     LEFT JOIN LATERAL (SELECT (1000 * extract(epoch FROM s.starts_at))::float8 AS from_ms, (1000 * extract(epoch FROM s.ends_at))::float8 AS to_ms FROM shifts s
+       WHERE s.worker_id = r.worker_id AND s.date = r.date AND NOT s.is_void AND (r.shift_id IS NULL OR s.id = r.shift_id) ORDER BY s.starts_at LIMIT 1) s ON TRUE
      WHERE r.worker_id = ANY (CAST(:workerIds AS uuid[])) AND r.date = :date AND ${IS_OF_DAY} ORDER BY r.id, g.position`,
           { workerIds: `{${workerIds.join(",")}}`, date },
         );
@@ -107,6 +118,8 @@ export async function readingsOfDay(
       peakDb,
       peakWeighting,
     } = row;
+    const stored = row.source === "history" ? row.storedLeftOut : null;
+    const leftOut = stored && leftOutIn(stored, shiftOf(row));
     const reading: GridRun = {
       runId: row.runId,
       runRevision: row.runRevision,
@@ -114,6 +127,8 @@ export async function readingsOfDay(
       instrumentId: row.instrumentId,
       instrumentClass: instrumentClass(row.kind, row.class),
       durationMin: row.durationMin,
+      ...(stored && { countedMin: stored.countedMin }),
+      ...(leftOut && { leftOut }),
       covers: row.covers,
       keptReason: row.keptReason,
       settings: {

@@ -19,7 +19,7 @@ export async function listTasks(
   { id = null, siteId = null }: { id?: string | null; siteId?: string | null },
 ): Promise<TaskRow[]> {
   return rows<TaskRow>(
-    `SELECT t.id, t.site_id AS "siteId", t.area_id AS "areaId", t.name, t.is_archived AS "isArchived", t.revision,
+    `SELECT t.id, t.site_id AS "siteId", t.area_id AS "areaId", t.name, t.required_gear AS "requiredGear", t.is_archived AS "isArchived", t.revision,
        a.name AS "areaName", coalesce(a.zone, 'none') AS zone
      FROM tasks t LEFT JOIN areas a ON a.id = t.area_id WHERE ${visible(programmePolicy, actor, "t")}
        AND (CAST(:id AS uuid) IS NULL OR t.id = :id) AND (CAST(:siteId AS uuid) IS NULL OR t.site_id = :siteId)

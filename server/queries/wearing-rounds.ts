@@ -1,5 +1,6 @@
 import type { z } from "zod";
 import type {
+  WearingCrews,
   WearingFilter,
   WearingRoundPage,
   WearingRoundView,
@@ -10,7 +11,7 @@ import { rows } from "../lib/db";
 import { only } from "../lib/only";
 import { type Actor, abilities, visible } from "../lib/policy";
 import type { Crew } from "../models/worker";
-import { wearingPolicy } from "../policies";
+import { roundPolicy, wearingPolicy } from "../policies";
 
 type Found = Omit<WearingRoundView, "can">;
 
@@ -57,12 +58,20 @@ export async function wearingRoundView(actor: Actor, id: string): Promise<Wearin
   return present(actor, only(await rows<Found>(`${SELECT_ROUNDS} WHERE o.id = :id`, { id })));
 }
 
+/** Crews through which the caller may make a round on a date. */
+export function wearingCrews(actor: Actor, date: string): Promise<WearingCrews["rows"]> {
+  return rows<WearingCrews["rows"][number]>(
+    `SELECT c.id, c.name, c.site_id AS "siteId", s.name AS "siteName" FROM crews c JOIN sites s ON s.id = c.site_id
+     WHERE NOT c.is_archived AND ${visible(roundPolicy(date), actor, "c")} ORDER BY s.name, c.name, c.id`,
+  );
+}
+
 /** Whom a round through a crew looks at: its people of a date who are there, with the tasks of their nominal day that have a protector or call for one. */
 export async function wearingTally(crew: Crew, date: string): Promise<WearingTally> {
   const workers = await rows<WearingTally["workers"][number]>(
     `SELECT w.id, w.name, w.employee_number AS "employeeNumber",
        coalesce((SELECT json_agg(j.task_id ORDER BY j.position) FROM job_tasks j JOIN tasks t ON t.id = j.task_id LEFT JOIN areas a ON a.id = t.area_id
-         WHERE j.job_id = w.job_id AND (coalesce(a.zone, 'none') <> 'none' OR EXISTS (SELECT 1 FROM assignments x
+         WHERE j.job_id = w.job_id AND t.site_id = :siteId AND (coalesce(a.zone, 'none') <> 'none' OR EXISTS (SELECT 1 FROM assignments x
            WHERE x.worker_id = w.id AND x.valid @> CAST(:date AS date) AND (x.task_id = t.id OR x.area_id = t.area_id OR (x.task_id IS NULL AND x.area_id IS NULL)))
            AND coalesce((SELECT l.level_db FROM task_levels l WHERE l.task_id = t.id AND l.effective_from <= CAST(:date AS date)
              ORDER BY l.effective_from DESC, l.number DESC LIMIT 1), 0) >= g.wear_from_db)), '[]') AS "taskIds",

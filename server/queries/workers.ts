@@ -77,7 +77,7 @@ export async function findWorkerDetail(actor: Actor, id: string): Promise<Worker
     `SELECT w.id, w.site_id AS "siteId", s.name AS "siteName", w.job_id AS "jobId", j.name AS "jobName",
        w.employee_number AS "employeeNumber", w.name, w.employer, w.employer_name AS "employerName", w.language,
        w.hired_on::text AS "hiredOn", w.left_on::text AS "leftOn", w.must_wear AS "mustWear",
-       w.personal_target_db AS "personalTargetDb", q.reason AS "requirementReason", w.revision,
+       w.personal_target_db AS "personalTargetDb", w.worn_gear AS "wornGear", q.reason AS "requirementReason", w.revision,
        EXISTS (SELECT 1 FROM users u WHERE u.worker_id = w.id AND u.revoked_at IS NULL) AS "hasSignIn",
        coalesce((SELECT json_agg(json_build_object('id', c.id, 'name', c.name, 'fromDate', lower(m.valid),
                    'toDate', upper(m.valid) - 1, 'isLoan', m.is_loan) ORDER BY lower(m.valid) DESC, c.name)

@@ -1,6 +1,7 @@
 import type { Config } from "../config";
 import { defineAreaRoutes } from "./areas";
 import { defineAssignmentRoutes } from "./assignments";
+import { defineAtEarRoutes } from "./at-ear";
 import { defineAuditRoutes } from "./audit-events";
 import { defineCrewRoutes } from "./crews";
 import { defineDayEntryRoutes } from "./day-entry";
@@ -21,6 +22,9 @@ import { defineMicrophoneCheckRoutes } from "./microphone-checks";
 import { defineNoticeRoutes } from "./notices";
 import { defineOutingRoutes } from "./outings";
 import { definePreviewRoutes } from "./previews";
+import { defineProtectorChoiceRoutes } from "./protector-choice";
+import { defineProtectorCombinationRoutes } from "./protector-combinations";
+import { defineProtectorFileRoutes } from "./protector-files";
 import { defineProtectorRoutes } from "./protectors";
 import { defineRecordingRoutes } from "./recordings";
 import { defineRuleSetRoutes } from "./rule-sets";
@@ -49,6 +53,7 @@ export function defineRoutes(config: Config<"web">): void {
   defineRunRoutes();
   defineAreaRoutes();
   defineAssignmentRoutes();
+  defineAtEarRoutes();
   defineAuditRoutes();
   defineCrewRoutes();
   defineHistoryImportRoutes();
@@ -63,6 +68,9 @@ export function defineRoutes(config: Config<"web">): void {
   defineOutingRoutes();
   defineSampleRoutes();
   definePreviewRoutes();
+  defineProtectorChoiceRoutes();
+  defineProtectorCombinationRoutes();
+  defineProtectorFileRoutes();
   defineProtectorRoutes();
   defineRecordingRoutes();
   defineRuleSetRoutes();

@@ -1,6 +1,7 @@
 import { z } from "zod";
 import { IdParams, IsoDate } from "../../shared/schemas/common";
 import {
+  WearingCrews,
   WearingFilter,
   WearingRoundInput,
   WearingRoundPage,
@@ -16,10 +17,26 @@ import { requireRevision } from "../lib/revision";
 import { WearingRound } from "../models/shop-floor";
 import { Site } from "../models/site";
 import { Crew } from "../models/worker";
-import { crewPolicy, may, sitePolicy, wearingPolicy } from "../policies";
-import { listWearingRounds, wearingRoundView, wearingTally } from "../queries/wearing-rounds";
+import { may, roundPolicy, sitePolicy, wearingEntryPolicy, wearingPolicy } from "../policies";
+import {
+  listWearingRounds,
+  wearingCrews,
+  wearingRoundView,
+  wearingTally,
+} from "../queries/wearing-rounds";
 
 export function defineWearingRoutes(): void {
+  endpoint.get(
+    "/wearing-crews",
+    {
+      summary: "Crews through which a round may be made on a date",
+      may: may.observe,
+      query: z.object({ date: IsoDate }),
+      reply: WearingCrews,
+    },
+    async ({ actor, query }) => ({ rows: await wearingCrews(actor, query.date) }),
+  );
+
   endpoint.get(
     "/crews/:id/wearing-tally",
     {
@@ -30,7 +47,7 @@ export function defineWearingRoutes(): void {
       reply: WearingTally,
     },
     async ({ actor, params, query }) =>
-      wearingTally(await findVisible(Crew, crewPolicy, params.id, actor), query.date),
+      wearingTally(await findVisible(Crew, roundPolicy(query.date), params.id, actor), query.date),
   );
 
   endpoint.get(
@@ -47,12 +64,13 @@ export function defineWearingRoutes(): void {
   endpoint.post(
     "/wearing-rounds",
     {
-      summary: "Enter who was seen wearing it",
-      may: may.observe,
+      summary: "Enter who was seen wearing it, or what somebody says of themselves",
+      may: may.enterWearing,
       body: WearingRoundInput,
       reply: WearingRoundView,
     },
     async ({ actor, body }) => {
+      authorize(wearingEntryPolicy, actor, "enter", body);
       const site = await findVisible(Site, sitePolicy, body.siteId, actor);
       return wearingRoundView(actor, await recordWearingRound(actor, site, body));
     },

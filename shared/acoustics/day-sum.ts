@@ -89,12 +89,30 @@ export function sumTasks(shift: ShiftInput, law: ExchangeLaw): Sum {
   return { least, most: missing === null ? most : Number.POSITIVE_INFINITY, missing };
 }
 
+/** A reading speaks for the shift, except that nobody knows how a part left out of it was. */
+export const isCutShort = ({ covers, leftOut }: ReadingInput): boolean =>
+  covers !== "part" && leftOut?.how === "unknown" && leftOut.minutes > NO_TIME_MIN;
+
 /** The reading that governs a shift under a law: under its own settings, and over the shift or projected to it. */
 export function governingReading(shift: ShiftInput, law: ExchangeLaw): ReadingInput | undefined {
+  return bestReading(shift, law, false);
+}
+
+/** The reading that would govern a shift under a law if it were known how the time left out of it was. */
+export function cutReading(shift: ShiftInput, law: ExchangeLaw): ReadingInput | undefined {
+  return governingReading(shift, law) ? undefined : bestReading(shift, law, true);
+}
+
+function bestReading(
+  shift: ShiftInput,
+  law: ExchangeLaw,
+  isCut: boolean,
+): ReadingInput | undefined {
   let best: ReadingInput | undefined;
   for (const reading of shift.readings) {
     if (reading.covers === "part" || !isOwnSetting(reading.settings, law)) continue;
     if (reading.dosePct === null && reading.averageDb === null) continue;
+    if (isCutShort(reading) !== isCut) continue;
     if (!best || isBetter(reading, best)) best = reading;
   }
   return best;
@@ -117,11 +135,42 @@ export function sumReading(reading: ReadingInput, shift: ShiftInput, law: Exchan
   const fromAverage = averageDb === null ? null : durationMin * weightOf(averageDb - zeroDb, law);
   // The number that the law is written in comes first: a level for an energy law, a dose for the others.
   const sum = law.isEnergy ? (fromAverage ?? fromDose) : (fromDose ?? fromAverage);
-  return sum! * projection(reading, shift);
+  return sum! * projection(reading, shift) + leftOutQuiet(reading, shift, law);
 }
 
-export function projection(reading: ReadingInput, shift: ShiftInput): number {
-  return reading.covers === "projected" ? shift.lengthMin / reading.durationMin : 1;
+/** By how much what a reading holds stands for more time than its own: the officer says that the rest was like it. */
+export function projection(
+  { covers, durationMin, leftOut }: ReadingInput,
+  { lengthMin }: ShiftInput,
+): number {
+  if (covers === "part") return 1;
+  const leftOutMin = leftOut?.minutes ?? 0;
+  if (leftOut?.how === "like-the-rest" && covers === "shift")
+    return (durationMin + leftOutMin) / durationMin;
+  if (covers === "shift") return 1;
+  const likeItMin =
+    leftOut === undefined || leftOut.how === "like-the-rest"
+      ? lengthMin
+      : Math.max(0, lengthMin - leftOutMin);
+  return likeItMin / durationMin;
+}
+
+/** The result rests on a likeness that the officer states, and not on the reading alone. */
+export const isProjected = ({ covers, leftOut }: ReadingInput): boolean =>
+  covers === "projected" ||
+  (covers === "shift" && leftOut?.how === "like-the-rest" && leftOut.minutes > NO_TIME_MIN);
+
+/** Time left out that the officer says was quiet, minutes; 0 where it was not. */
+export function leftOutQuietMin({ covers, leftOut }: ReadingInput, shift: ShiftInput): number {
+  if (covers === "part" || leftOut?.how !== "quiet") return 0;
+  return covers === "projected" ? Math.min(leftOut.minutes, shift.lengthMin) : leftOut.minutes;
+}
+
+function leftOutQuiet(reading: ReadingInput, shift: ShiftInput, law: ExchangeLaw): number {
+  const { leftOut } = reading;
+  if (leftOut?.how !== "quiet") return 0;
+  const weight = leastWeight({ kind: "steady" }, leftOut.levelDb, law);
+  return leftOutQuietMin(reading, shift) * weight;
 }
 
 /** What a reading under other settings than the law's says about its shift; `atMost` null: it covers only a part. */
@@ -144,13 +193,15 @@ export function boundsOfReadings(shift: ShiftInput, law: ExchangeLaw): ReadingBo
     const metric = isLaeq(reading.settings)
       ? ({ kind: "laeq" } as const)
       : ({ kind: "lavg", settings: reading.settings } as const);
+    const quiet = leftOutQuiet(reading, shift, law);
+    const isOpen = reading.covers === "part" || isCutShort(reading);
     found.push({
       reading,
       metric,
       averageDb,
       minutes,
-      atLeast: minutes * leastWeight(metric, averageDb, law),
-      atMost: reading.covers === "part" ? null : minutes * mostWeight(metric, averageDb, law),
+      atLeast: minutes * leastWeight(metric, averageDb, law) + quiet,
+      atMost: isOpen ? null : minutes * mostWeight(metric, averageDb, law) + quiet,
     });
   }
   return found;
@@ -175,10 +226,17 @@ function boundsTogether(bounds: readonly ReadingBounds[]): Pick<Sum, "least" | "
   return least <= most ? { least, most } : { least: Math.min(...leasts), most: Math.max(...mosts) };
 }
 
-/** The tasks of a shift without a governing reading, with what its other readings prove about them. */
+/**
+ * The tasks of a shift without a governing reading, with what its other readings prove about them. Where the reading
+ * that would govern leaves out time that nobody speaks for, it and the tasks may prove Over, and nothing proves Under.
+ */
 export function narrowed(tasks: Sum, shift: ShiftInput, law: ExchangeLaw): Sum {
   const isOpen = shift.readings.length > 0 && tasks.least < tasks.most;
-  return isOpen ? narrow(tasks, shift, law) : tasks;
+  const sum = isOpen ? narrow(tasks, shift, law) : tasks;
+  const cut = cutReading(shift, law);
+  if (!cut) return sum;
+  const least = Math.max(sum.least, sumReading(cut, shift, law));
+  return { least, most: Number.POSITIVE_INFINITY, missing: "time-unknown" };
 }
 
 /** LAVG that a dose stands for over the reading's run time, dB; null for no dose at all. */
@@ -210,7 +268,7 @@ export function sumDay(day: DayInput, law: ExchangeLaw): DaySum {
       least += sum;
       most += sum;
       readings++;
-      if (reading.covers === "projected") projected++;
+      if (isProjected(reading)) projected++;
       continue;
     }
     const shiftSum = narrowed(tasks, shift, law);

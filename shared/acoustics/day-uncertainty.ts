@@ -1,4 +1,5 @@
 import {
+  cutReading,
   governingReading,
   likenessFactor,
   missingTime,
@@ -59,7 +60,7 @@ export function dayUncertainty(day: DayInput): DayUncertainty {
       });
       continue;
     }
-    const missing = missingTime(shift);
+    const missing = missingTime(shift) ?? (cutReading(shift, ENERGY_LAW) ? "time-unknown" : null);
     if (missing !== null) return none(missing);
     const factor = likenessFactor(shift);
     for (const task of shift.tasks) {

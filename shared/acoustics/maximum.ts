@@ -1,4 +1,4 @@
-import { missingTime, unaccountedMin } from "./day-sum";
+import { isCutShort, isProjected, missingTime, unaccountedMin } from "./day-sum";
 import { countsAsWorn } from "./protection/at-ear";
 import { type PeakReduction, peakReduction } from "./protection/impulse";
 import type {
@@ -29,7 +29,8 @@ interface Stated {
 
 /**
  * The day's slow maximum or peak for a criterion. Maxima are never averaged: the greatest of all counts. A reading
- * over the shift governs it; a part of it still proves what it shows. A mean level proves that the slow maximum is
+ * over the shift governs it; a part of it, or one that leaves out time of which nothing is known, still proves what it
+ * shows. A mean level proves that the slow maximum is
  * at least as much, and a slow maximum that an A-weighted peak is.
  *
  * At the ear a protector is credited against a C-weighted peak by the type of the impulse noise, where type and H, M, L
@@ -63,21 +64,28 @@ export function dayMaximum(
     const isWorn = isAtEar && shift.tasks.some((task) => isWornAtAll(task, day));
     const ofShift = isWorn ? reductionOfShift(shift, day, criterion, rule) : null;
     let coveringDb = Number.NEGATIVE_INFINITY;
-    let isProjected = false;
+    let isByLikeness = false;
+    let isCut = false;
     for (const reading of shift.readings) {
       const statedDb = statedMaximumDb(reading, criterion);
       if (statedDb === null) continue;
       if (ofShift === null) take(statedDb, statedDb, isWorn, null);
       else takeReduced(statedDb, ofShift, criterion, take);
       if (reading.covers === "part") continue;
+      isCut ||= isCutShort(reading);
+      if (isCutShort(reading)) continue;
       coveringDb = Math.max(coveringDb, statedDb);
-      isProjected ||= reading.covers === "projected";
+      isByLikeness ||= isProjected(reading);
+      const { leftOut } = reading;
+      if (leftOut?.how === "quiet" && criterion.quantity === "slow-maximum")
+        take(leftOut.levelDb, leftOut.levelDb, false, null);
     }
     if (coveringDb > Number.NEGATIVE_INFINITY) {
       byReading++;
-      if (isProjected) byProjected++;
+      if (isByLikeness) byProjected++;
       continue;
     }
+    if (isCut) take(Number.NEGATIVE_INFINITY, Number.POSITIVE_INFINITY, false, "time-unknown");
     takeTasks(shift, day, criterion, rule, take);
   }
   return {
@@ -178,7 +186,7 @@ export function creditedPeaks(
     for (const reading of shift.readings) {
       const statedDb = statedMaximumDb(reading, criterion);
       add(null, statedDb, ofShift);
-      isCovered ||= statedDb !== null && reading.covers !== "part";
+      isCovered ||= statedDb !== null && reading.covers !== "part" && !isCutShort(reading);
     }
     if (isCovered) continue;
     for (const task of shift.tasks) {

@@ -181,13 +181,18 @@ export type Unaccounted =
   | { readonly how: "like-the-rest" }
   | { readonly how: "quiet"; readonly levelDb: number };
 
+/** Time within a run that its reading leaves out, minutes, and how it was. */
+export type LeftOut = Unaccounted & { readonly minutes: number };
+
 /** A dosimeter's statement about a shift, under its settings. */
 export interface ReadingInput {
   readonly id: string;
   readonly runId: string;
   readonly settings: MeterSettings;
-  /** Run time of the instrument, minutes. */
+  /** Run time of the instrument, minutes, without what is left out. */
   readonly durationMin: number;
+  /** Absent: nothing is left out. It is no silence: unknown, the reading proves what it holds and nothing more. */
+  readonly leftOut?: LeftOut;
   readonly dosePct: number | null;
   /** LAVG under `settings`, or LAeq where the exchange rate is 3 and there is no threshold. */
   readonly averageDb: number | null;
@@ -380,6 +385,11 @@ export interface TaskAtEar {
   /** While worn, active part off and on. */
   readonly wornDb: number | null;
   readonly wornActiveDb: number | null;
+  /**
+   * Between which levels the one while worn lies, active part off, where the task's level only bounds the rule's own;
+   * null on a side that is open. Absent: `wornDb` is it.
+   */
+  readonly wornRangeDb?: { readonly leastDb: number | null; readonly mostDb: number | null };
   /** Wearing time counted. */
   readonly inTaskDb: number | null;
   readonly inTaskActiveDb: number | null;

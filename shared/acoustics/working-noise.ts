@@ -1,7 +1,10 @@
 import {
   boundsOfReadings,
+  cutReading,
   type DaySum,
   governingReading,
+  isProjected,
+  leftOutQuietMin,
   likenessFactor,
   narrowed,
   projection,
@@ -509,6 +512,15 @@ export class NoiseUnderLaw {
     const readings = boundsOfReadings(shift, law);
     const byTasks = isMost ? tasks.most : tasks.least;
     const reading = readings.find(({ atLeast, atMost }) => (isMost ? atMost : atLeast) === weight);
+    const cut = cutReading(shift, law);
+    if (cut && byTasks !== weight) {
+      return {
+        weight,
+        restsOn: text(/*i18n*/ "what is kept of its reading"),
+        lines: [line(this.readingParts(cut, shift, weight), label)],
+        notes: [],
+      };
+    }
     if (byTasks === weight || !reading) {
       return { weight, restsOn: text(/*i18n*/ "its tasks"), lines: [], notes: [] };
     }
@@ -524,8 +536,12 @@ export class NoiseUnderLaw {
     const { law } = this;
     const { averageDb, dosePct, settings, durationMin } = reading;
     const isByAverage = law.isEnergy ? averageDb !== null : dosePct === null;
-    const start = [symbol(law.isEnergy ? "E" : "D"), sign("=")];
+    const start = [
+      symbol(law.isEnergy ? "E" : "D"),
+      sign(reading === governingReading(shift, law) ? "=" : "≥"),
+    ];
     const end = [
+      ...this.quietParts(reading, shift),
       sign("="),
       value(
         law.isEnergy ? scientific(weight / law.referenceMin) : dose(100 * weight * doseScale(law)),
@@ -539,9 +555,10 @@ export class NoiseUnderLaw {
         ...end,
       ];
     }
+    const factor = projection(reading, shift);
     const projected =
-      reading.covers === "projected"
-        ? [sign("·"), fraction([value(number(shift.lengthMin))], [value(number(durationMin))])]
+      isProjected(reading) || factor !== 1
+        ? [sign("·"), fraction([value(number(durationMin * factor))], [value(number(durationMin))])]
         : [];
     const reference =
       law.referenceMin === 480
@@ -579,6 +596,20 @@ export class NoiseUnderLaw {
       ...projected,
       ...end,
     ];
+  }
+
+  /** What time left out that was quiet adds; nothing where it lies under the threshold. */
+  private quietParts(reading: ReadingInput, shift: ShiftInput): MathPart[] {
+    const { law } = this;
+    const { leftOut } = reading;
+    const quietMin = leftOutQuietMin(reading, shift);
+    if (leftOut?.how !== "quiet" || quietMin === 0) return [];
+    const weight = leastWeight({ kind: "steady" }, leftOut.levelDb, law);
+    if (weight === 0) return [];
+    const usedDb = law.table
+      ? law.criterionLevelDb + levelFactor(law) * Math.log10(weight)
+      : leftOut.levelDb;
+    return [sign("+"), ...this.amountParts(usedDb, quietMin)];
   }
 
   /** Minutes at a level, as energy over T0 or as a dose. */

@@ -403,6 +403,7 @@ class Builder {
                 }),
               ]
             : []),
+          ...unique(readings.flatMap(({ reading }) => leftOutNote(reading))),
           ...(evaluation.isProjected
             ? [
                 text(
@@ -1456,6 +1457,35 @@ function settingsText(
           threshold: number(settings.thresholdDb),
         },
       );
+}
+
+/** What becomes of the time that a reading over the shift leaves out. */
+function leftOutNote({ covers, leftOut }: ReadingInput): WorkingText[] {
+  if (covers === "part" || leftOut === undefined || leftOut.minutes === 0) return [];
+  const values = { minutes: minutes(leftOut.minutes) };
+  switch (leftOut.how) {
+    case "unknown":
+      return [
+        text(
+          /*i18n*/ "{minutes} min of the run are left out, and how it was is not known: what is kept may prove Over, never Under.",
+          values,
+        ),
+      ];
+    case "like-the-rest":
+      return [
+        text(
+          /*i18n*/ "{minutes} min of the run are left out; the officer says that they were like the rest, and what is kept stands for them too.",
+          values,
+        ),
+      ];
+    case "quiet":
+      return [
+        text(
+          /*i18n*/ "{minutes} min of the run are left out; the officer says that they were quiet, at {level} dB, which is added.",
+          { ...values, level: level(leftOut.levelDb) },
+        ),
+      ];
+  }
 }
 
 /** The officer's reasons for readings that count in spite of what speaks against them. */

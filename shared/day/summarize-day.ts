@@ -3,6 +3,7 @@ import type {
   DayEvaluation,
   DayInput,
   RuleSetVersion,
+  TaskAtEar,
   Verdict,
 } from "../acoustics/types";
 import type { DayFigures } from "../schemas/finding";
@@ -24,11 +25,25 @@ function ownTargetDb(
   return personalTargetDb < targetDb ? personalTargetDb : null;
 }
 
+/** While worn in the deciding task: where only bounds are known the one on the day's own side, if that is not open. */
+function whileWorn(
+  deciding: TaskAtEar | undefined,
+  bound: DayEvaluation["atEarBound"],
+): Pick<DayFigures, "whileWornDb" | "whileWornBound"> {
+  const range = deciding?.wornRangeDb;
+  if (!range) return { whileWornDb: deciding?.wornDb ?? null, whileWornBound: "exact" };
+  const { leastDb, mostDb } = range;
+  return mostDb === null || (bound === "lower" && leastDb !== null)
+    ? { whileWornDb: leastDb, whileWornBound: "lower" }
+    : { whileWornDb: mostDb, whileWornBound: "upper" };
+}
+
 const levelQuantities: ReadonlySet<string | undefined> = new Set(["lex-8h", "dose", "table-dose"]);
 
 export type DaySummary = Omit<DayFigures, "resultId" | "origin"> & {
   decidingTaskId: string | null;
   dosePct: number | null;
+  doseBound: CriterionResult["bound"];
 };
 
 /** What a list row, a strip and a stored result need of an evaluated day. */
@@ -42,6 +57,7 @@ export function summarizeDay(
     governing.criteria.find(({ id }) => id === criterionId)?.quantity;
   const levels = own.filter((result) => levelQuantities.has(quantityOf(result)));
   const outside = levels.filter(({ judged }) => judged === "without-protection");
+  const dose = outside.find(({ dosePct }) => dosePct !== null);
   const atEar = levels.filter(({ judged }) => judged === "at-the-ear");
   const tasks = input.shifts.flatMap((shift) => shift.tasks);
   const deciding = evaluation.tasks.find(
@@ -57,7 +73,7 @@ export function summarizeDay(
     atEarActiveDb: evaluation.atEarActiveDb,
     atEarAsWorkedDb: evaluation.atEarAsWorkedDb,
     uncertaintyDb: evaluation.uncertaintyDb,
-    whileWornDb: deciding?.wornDb ?? null,
+    ...whileWorn(deciding, evaluation.atEarBound),
     verdictOutside: headline(outside),
     verdictAtEar: headline(atEar),
     word: evaluation.word,
@@ -83,6 +99,7 @@ export function summarizeDay(
         reason,
       }),
     ),
-    dosePct: outside.find(({ dosePct }) => dosePct !== null)?.dosePct ?? null,
+    dosePct: dose?.dosePct ?? null,
+    doseBound: dose?.bound ?? "exact",
   };
 }

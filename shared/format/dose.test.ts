@@ -1,5 +1,5 @@
 import { expect, test } from "vitest";
-import { formatDose } from "./dose";
+import { formatBoundedDose, formatDose } from "./dose";
 
 test.each([
   [83.4, "83\u00a0%"],
@@ -14,4 +14,10 @@ test.each([
 test("German writes a comma; no dose is a dash", () => {
   expect(formatDose(4.25, "de")).toBe("4,3\u00a0%");
   expect(formatDose(null, "de")).toBe("\u2013");
+});
+
+test("a dose that only bounds the true one bears its mark", () => {
+  expect(formatBoundedDose(139.6, "lower", "en")).toBe("≥140\u00a0%");
+  expect(formatBoundedDose(139.6, "exact", "en")).toBe("140\u00a0%");
+  expect(formatBoundedDose(null, "upper", "en")).toBe("–");
 });

@@ -1,4 +1,5 @@
 import type { Locale } from "../i18n/index";
+import { BOUND_MARK, type LevelBound } from "./level";
 import { formatNumber, NO_FIGURE } from "./number";
 
 /** A dose: 1 %, below 10 % to 0.1 %; with at least so many decimals where it is tested. The unit comes with a no-break space. */
@@ -7,6 +8,15 @@ export function formatDose(dosePct: number | null, locale: Locale, least = 0): s
   // By the number that is shown: 9.96 rounds to 10, and is then a two-digit dose.
   const digits = Math.max(least, Math.abs(dosePct) < 9.95 ? 1 : 0);
   return `${formatNumber(dosePct, digits, locale)}\u00a0%`;
+}
+
+/** A dose that may only be a bound of the true one: "≥140 %". */
+export function formatBoundedDose(
+  dosePct: number | null,
+  bound: LevelBound,
+  locale: Locale,
+): string {
+  return `${dosePct === null ? "" : BOUND_MARK[bound]}${formatDose(dosePct, locale)}`;
 }
 
 /** A share of something, whole percent. */

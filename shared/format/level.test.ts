@@ -32,3 +32,11 @@ test("limits are as short as they are, changes carry their sign", () => {
   expect(formatUncertainty(2.2955722608011286, "en")).toBe("\u00b12.3");
   expect(formatWholeLevel(78.9, "en")).toBe("79");
 });
+
+test("a worker's level has a tenth where it would read as the limit that it is not at", () => {
+  expect(formatWholeLevel(87.4, "en", 87)).toBe("87.4");
+  expect(formatWholeLevel(86.6, "de", 87)).toBe("86,6");
+  expect(formatWholeLevel(87, "en", 87)).toBe("87");
+  expect(formatWholeLevel(88.4, "en", 87)).toBe("88");
+  expect(formatWholeLevel(87.4, "en")).toBe("87");
+});

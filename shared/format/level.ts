@@ -3,7 +3,7 @@ import { formatNumber, MINUS, NO_FIGURE, roundTo } from "./number";
 
 export type LevelBound = "exact" | "upper" | "lower";
 
-const BOUND_MARK: Readonly<Record<LevelBound, string>> = {
+export const BOUND_MARK: Readonly<Record<LevelBound, string>> = {
   exact: "",
   upper: "\u2264",
   lower: "\u2265",
@@ -24,9 +24,18 @@ export function formatLevelWithUnit(levelDb: number | null, locale: Locale): str
   return levelDb === null ? NO_FIGURE : `${formatLevel(levelDb, locale)}\u00a0dB`;
 }
 
-/** Whole decibels, for the worker's own page. */
-export function formatWholeLevel(levelDb: number | null, locale: Locale): string {
-  return formatNumber(levelDb, 0, locale);
+/** Whole decibels, for the worker's own page; with a tenth where it would read as the limit that it is not at. */
+export function formatWholeLevel(
+  levelDb: number | null,
+  locale: Locale,
+  limitDb: number | null = null,
+): string {
+  const isBesideLimit =
+    levelDb !== null &&
+    limitDb !== null &&
+    levelDb !== limitDb &&
+    roundTo(levelDb, 0) === roundTo(limitDb, 0);
+  return formatNumber(levelDb, isBesideLimit ? 1 : 0, locale);
 }
 
 /** A limit or an action value: as short as it is, "87", "80.5". */

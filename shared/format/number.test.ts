@@ -1,5 +1,5 @@
 import { expect, test } from "vitest";
-import { editNumber, formatNumber, parseNumber, roundTo } from "./number";
+import { editNumber, fieldNumber, formatNumber, parseNumber, roundTo } from "./number";
 
 test.each([
   [86.65, 1, 86.7],
@@ -42,4 +42,12 @@ test("what stands in a field can be typed again", () => {
   for (const locale of ["en", "de"] as const) {
     expect(parseNumber(editNumber(-3.25, locale), locale)).toEqual({ kind: "ok", value: -3.25 });
   }
+});
+
+test("a field shows what was typed in full, and what was computed to 0.01", () => {
+  expect(fieldNumber(101.4984351485718, "en")).toBe("101.5");
+  expect(fieldNumber(-0.7493490621868659, "de")).toBe("−0,75");
+  expect(fieldNumber(0.0000123, "en")).toBe("0.0000123");
+  expect(fieldNumber(86.725, "en")).toBe("86.725");
+  expect(fieldNumber(null, "en")).toBe("");
 });

@@ -31,6 +31,19 @@ export function editNumber(value: number | null, locale: Locale): string {
   return String(value).replace(".", DECIMAL_MARK[locale]).replace("-", MINUS);
 }
 
+/** Nobody types more digits than this. */
+const TYPED_DIGITS = 10;
+
+/**
+ * A number as it stands in a field: what a computation left, with more digits than anybody types, to 0.01. The field holds
+ * all of it as long as nobody writes into it.
+ */
+export function fieldNumber(value: number | null, locale: Locale): string {
+  if (value === null || !Number.isFinite(value)) return "";
+  const isComputed = Number(value.toPrecision(TYPED_DIGITS)) !== value;
+  return editNumber(isComputed ? roundTo(value, 2) : value, locale);
+}
+
 export type Parsed<T> =
   | { readonly kind: "empty" }
   | { readonly kind: "ok"; readonly value: T }

@@ -118,6 +118,8 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("A mail address or a sign-in is needed.");
     case "one-use-only":
       return i18n.t("Choose a task or an area, not both.");
+    case "task-or-job":
+      return i18n.t("Choose a task or a job, one of them.");
     case "same-protector-twice":
       return i18n.t("Two different protectors are needed to wear them together.");
     case "code-used":
@@ -131,13 +133,19 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
     case "after-leaving":
       return i18n.t("This worker had left before that.");
     case "snr-below-l":
-      return i18n.t("The SNR lies below the L of the same label. One of them is wrong.");
+      return i18n.t(
+        "The SNR lies below the L of the same label: look on the label which of them is wrong.",
+      );
     case "hml-all-three":
       return i18n.t("H, M and L belong together: all three, or none.");
     case "deviation-negative":
-      return i18n.t("A standard deviation can’t be negative.");
+      return i18n.t("A standard deviation can’t be negative: type it without the minus.");
+    case "too-many-bands":
+      return i18n.t("This line has more values than there are bands. Take the others out.");
     case "band-missing":
-      return i18n.t("Mean and deviation of a band belong together.");
+      return i18n.t(
+        "Mean and deviation of a band belong together: type both, or leave both empty.",
+      );
     case "bands-backwards":
       return i18n.t(
         "No protector takes so much more off low frequencies than off high ones. The bands may stand in the wrong order: 63 or 125 Hz comes first.",
@@ -235,6 +243,8 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("What has failed is not good until any date.");
     case "file-kind":
       return i18n.t("Photographs (PNG, JPEG, WebP) and PDF are taken, nothing else.");
+    case "file-attached-already":
+      return i18n.t("This file stands here already.");
     case "reading-empty":
       return i18n.t("This row says nothing yet. Type a figure, or take the row out.");
     case "in-the-future":

@@ -3,6 +3,7 @@ import type {
   ActivePart,
   BandAttenuation,
   DayInput,
+  LeftOut,
   LevelMetric,
   MeterSettings,
   OctaveBandValues,
@@ -168,21 +169,32 @@ export const ReadingFacts = z.object({
 });
 export type ReadingFacts = z.infer<typeof ReadingFacts>;
 
-const Reading = z.object({
-  id: z.string(),
-  runId: z.string().default(""),
-  durationMin: z.number().positive().max(1440),
-  covers: z.enum(["shift", "projected", "part"]),
-  instrument: InstrumentClassName.default("dosimeter"),
-  keptReason: z.string().nullable().default(null),
-  ...ReadingFacts.shape,
-}) as unknown as z.ZodType<ReadingInput>;
-
 export const UnaccountedInput = z.discriminatedUnion("how", [
   z.object({ how: z.literal("unknown") }),
   z.object({ how: z.literal("like-the-rest") }),
   z.object({ how: z.literal("quiet"), levelDb: LevelDb }),
 ]);
+
+const minutes = z.number().positive().max(1440);
+/** Time within a run that its reading leaves out. */
+export const LeftOutInput = as<LeftOut>()(
+  z.discriminatedUnion("how", [
+    z.object({ how: z.literal("unknown"), minutes }),
+    z.object({ how: z.literal("like-the-rest"), minutes }),
+    z.object({ how: z.literal("quiet"), levelDb: LevelDb, minutes }),
+  ]),
+);
+
+const Reading = z.object({
+  id: z.string(),
+  runId: z.string().default(""),
+  durationMin: z.number().positive().max(1440),
+  leftOut: LeftOutInput.optional(),
+  covers: z.enum(["shift", "projected", "part"]),
+  instrument: InstrumentClassName.default("dosimeter"),
+  keptReason: z.string().nullable().default(null),
+  ...ReadingFacts.shape,
+}) as unknown as z.ZodType<ReadingInput>;
 
 const Shift = z
   .object({

@@ -38,6 +38,7 @@ export const DayFigures = z.object({
   atEarAsWorkedDb: z.number().nullable(),
   uncertaintyDb: z.number().nullable(),
   whileWornDb: z.number().nullable(),
+  whileWornBound: z.enum(["exact", "upper", "lower"]),
   verdictOutside: z.enum(["under", "over", "cant-tell-yet", "not-assessed"]),
   verdictAtEar: z.enum(["under", "over", "cant-tell-yet", "not-assessed"]),
   word: z

@@ -119,6 +119,8 @@ export type AttenuationNeed = z.infer<typeof AttenuationNeed>;
 
 export const Gear = z.enum(["helmet", "glasses", "respirator"]);
 export type Gear = z.infer<typeof Gear>;
+/** What is worn beside a protector, by a worker always or in a task. */
+export const GearSet = z.array(Gear).max(3).default([]);
 
 /** A model offered to a worker, with why it stands where it stands. */
 export const Candidate = z.object({

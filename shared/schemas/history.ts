@@ -1,6 +1,6 @@
 import { z } from "zod";
 import { Can, IsoDate, PageQuery, pageOf, Reason } from "./common";
-import { ReadingFacts } from "./evaluation";
+import { ReadingFacts, UnaccountedInput } from "./evaluation";
 
 /** What a column of levels can be. `las`: the slow level at the instant; `las-max`: its maximum in the interval. */
 export const HistoryChannel = z.enum([
@@ -224,6 +224,10 @@ export const HistoryStretch = z
 export type HistoryStretch = z.infer<typeof HistoryStretch>;
 export const HistoryStretches = z.object({
   stretches: z.array(HistoryStretch).max(200),
+  /** How the time that is left out was; null, where some is: unknown. */
+  leftOut: UnaccountedInput.nullable().default(null),
+  /** Why its run is kept all the same, where something speaks against it now. */
+  keptReason: Reason.nullable().default(null),
   reason: Reason.nullable().default(null),
 });
 export type HistoryStretches = z.infer<typeof HistoryStretches>;
@@ -245,6 +249,10 @@ export const HistoryView = z.object({
   valuesCount: z.number(),
   channels: z.array(HistoryChannel),
   stretches: z.array(HistoryStretch),
+  /** How the time that is left out was; null where none is. */
+  leftOut: UnaccountedInput.nullable(),
+  /** What its run speaks for. */
+  covers: z.enum(["shift", "projected", "part"]),
   taskNames: z.record(z.string(), z.string()),
   /** Tasks of the worker's shift, to draw. */
   tasks: z.array(z.object({ id: z.uuid(), name: z.string(), durationMin: z.number() })),

@@ -1,8 +1,8 @@
 import { z } from "zod";
 import { activeAttenuationDb } from "../acoustics/protection/active";
-import type { ActivePart, OctaveBandValues } from "../acoustics/types";
+import type { ActivePart, BandAttenuation, OctaveBandValues } from "../acoustics/types";
 import { Can, IsoDate, Name, Reason } from "./common";
-import { ProtectorFacts, ProtectorKindName } from "./evaluation";
+import { Attenuation, ProtectorFacts, ProtectorKindName } from "./evaluation";
 import { Size } from "./fit";
 
 type Context = { value: z.infer<typeof ProtectorFacts>; issues: unknown[] };
@@ -22,11 +22,7 @@ export function plausible(context: Context): void {
     [hDb, mDb, lDb].some((value) => value === null)
   )
     add(["mDb"], "hml-all-three");
-  if (bands?.sdDb.some((value) => value !== null && value < 0))
-    add(["bands", "sdDb"], "deviation-negative");
-  if (bands && (bands.meanDb[0] === null) !== (bands.sdDb[0] === null))
-    add(["bands", "sdDb", 0], "band-missing");
-  if (bands && isBackwards(bands.meanDb)) add(["bands", "meanDb"], "bands-backwards");
+  if (bands) for (const { path, code } of faultsOfBands(bands)) add(["bands", ...path], code);
   if (usLabel?.sdDb.some((value) => value < 0)) add(["usLabel", "sdDb"], "deviation-negative");
   if (percentile && percentile.fewDb < percentile.mostDb)
     add(["percentile", "fewDb"], "few-below-most");
@@ -39,6 +35,17 @@ export function plausible(context: Context): void {
         : ["active", "attenuationDb", HIGHEST_BAND],
       "active-at-8-khz",
     );
+}
+
+/** Means and deviations that no test gives, each under its row. */
+function faultsOfBands({ meanDb, sdDb }: BandAttenuation) {
+  const faults: { path: (string | number)[]; code: string }[] = [];
+  if (sdDb.some((value) => value !== null && value < 0))
+    faults.push({ path: ["sdDb"], code: "deviation-negative" });
+  if ((meanDb[0] === null) !== (sdDb[0] === null))
+    faults.push({ path: ["sdDb", 0], code: "band-missing" });
+  if (isBackwards(meanDb)) faults.push({ path: ["meanDb"], code: "bands-backwards" });
+  return faults;
 }
 
 const isBackwards = ([, at125, , , , , at4000, at8000]: OctaveBandValues): boolean =>
@@ -102,3 +109,57 @@ export const ProtectorDetail = ProtectorView.extend({
     }),
   ),
 });
+
+/** A data sheet or certificate, sent before, that belongs to a model. */
+export const ProtectorFileInput = z.object({ fileId: z.uuid(), title: Name(200) });
+export type ProtectorFileInput = z.infer<typeof ProtectorFileInput>;
+export const ProtectorFileView = z.object({
+  id: z.uuid(),
+  fileId: z.uuid(),
+  title: z.string(),
+  fileName: z.string(),
+  sizeBytes: z.number(),
+  authorName: z.string().nullable(),
+  createdAt: z.string(),
+});
+export type ProtectorFileView = z.infer<typeof ProtectorFileView>;
+export const ProtectorFileList = z.object({ rows: z.array(ProtectorFileView) });
+export const ProtectorFileRemoval = z.object({ reason: Reason });
+
+/** Test data of two models worn together, the inner one next to the ear, from a date on. */
+export const CombinationInput = z
+  .object({
+    innerModelId: z.uuid(),
+    outerModelId: z.uuid(),
+    effectiveFrom: IsoDate,
+    bands: Attenuation,
+    /** Needed for all data of a pair after the first. */
+    reason: Reason.nullable().default(null),
+  })
+  .check((context) => {
+    const { innerModelId, outerModelId, bands } = context.value;
+    const add = (path: (string | number)[], code: string) =>
+      context.issues.push({ code: "custom", input: context.value, path, params: { code } });
+    if (innerModelId === outerModelId) add(["outerModelId"], "same-protector-twice");
+    for (const { path, code } of faultsOfBands(bands)) add(["bands", ...path], code);
+  });
+export type CombinationInput = z.infer<typeof CombinationInput>;
+export const CombinationFilter = z.object({ modelId: z.uuid() });
+export const CombinationView = z.object({
+  id: z.uuid(),
+  innerModelId: z.uuid(),
+  innerName: z.string(),
+  outerModelId: z.uuid(),
+  outerName: z.string(),
+  number: z.number(),
+  effectiveFrom: IsoDate,
+  bands: Attenuation,
+  reason: z.string().nullable(),
+  authorName: z.string().nullable(),
+  createdAt: z.string(),
+  /** Of the pair's data, those that count today. */
+  isInForce: z.boolean(),
+});
+export type CombinationView = z.infer<typeof CombinationView>;
+/** By pair, and of each pair the latest first. */
+export const CombinationList = z.object({ rows: z.array(CombinationView) });

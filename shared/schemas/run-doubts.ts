@@ -73,6 +73,14 @@ export interface DoubtfulFacts {
   readonly covers: "shift" | "projected" | "part";
   /** Null where no shift is known. */
   readonly shift: FacedShift | null;
+  /** What is left out of the run's history, minutes; absent or null: nothing. */
+  readonly leftOut?: {
+    readonly minutes: number;
+    /** Somebody says how it was. */
+    readonly isKnown: boolean;
+    /** The run's minutes have it in them. */
+    readonly isInDuration: boolean;
+  } | null;
   /** What the instrument itself showed. */
   readonly shown: readonly ("clipped" | "under-range")[];
 }
@@ -111,11 +119,15 @@ export function shiftDoubt({
   covers,
   shift,
   durationMin,
-}: Pick<DoubtfulFacts, "covers" | "shift" | "durationMin">): RunDoubt | null {
+  leftOut = null,
+}: Pick<DoubtfulFacts, "covers" | "shift" | "durationMin" | "leftOut">): RunDoubt | null {
   if (shift === null || durationMin === null || covers === "part") return null;
   const { from, to, shiftMin, insideMin } = shift;
   if (insideMin === 0) return { code: "outside-shift", params: { from, to } };
-  const coveredMin = Math.min(durationMin, insideMin ?? durationMin);
+  const wholeMin = durationMin + (leftOut === null || leftOut.isInDuration ? 0 : leftOut.minutes);
+  // Time left out of which nothing is known covers nothing.
+  const unknownMin = leftOut === null || leftOut.isKnown ? 0 : leftOut.minutes;
+  const coveredMin = Math.max(0, Math.min(wholeMin, insideMin ?? wholeMin) - unknownMin);
   return covers === "shift" && coveredMin < SHIFT_COVERED_SHARE * shiftMin - EPSILON
     ? { code: "shorter-than-shift", params: { coveredMin, shiftMin } }
     : null;

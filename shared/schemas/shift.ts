@@ -1,7 +1,7 @@
 import { z } from "zod";
 import type { ProtectorData, TaskLevel } from "../acoustics/types";
 import { IsoDate, Reason, TimeOfDay } from "./common";
-import { Attenuation, ReadingFacts, UnaccountedInput } from "./evaluation";
+import { Attenuation, LeftOutInput, ReadingFacts, UnaccountedInput } from "./evaluation";
 import { DayFigures } from "./finding";
 import { EntryNotices } from "./notice";
 import { InstrumentView } from "./run";
@@ -111,6 +111,9 @@ export const GridRun = ReadingFacts.extend({
   instrumentId: z.uuid(),
   instrumentClass: z.enum(["class-1-meter", "class-2-meter", "dosimeter"]),
   durationMin: z.number(),
+  /** What is left out of the history that it was read off, and the minutes that it counts over. */
+  leftOut: LeftOutInput.optional(),
+  countedMin: z.number().optional(),
   covers: z.enum(["shift", "projected", "part"]),
   keptReason: z.string().nullable(),
 });

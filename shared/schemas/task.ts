@@ -1,6 +1,7 @@
 import { z } from "zod";
 import { Can, IsoDate, Name, Reason } from "./common";
 import { TaskLevelFacts } from "./evaluation";
+import { GearSet } from "./fit";
 import { LEVEL_DOUBTS } from "./level-doubts";
 
 const DatedLevel = TaskLevelFacts.extend({
@@ -46,6 +47,8 @@ export const TaskInput = z.object({
   siteId: z.uuid(),
   areaId: z.uuid().nullable().default(null),
   name: Name(120),
+  /** What the task asks for beside a protector. */
+  requiredGear: GearSet,
   isArchived: z.boolean().default(false),
 });
 export type TaskInput = z.infer<typeof TaskInput>;

@@ -68,3 +68,11 @@ export const WearingTally = z.object({
   ),
 });
 export type WearingTally = z.infer<typeof WearingTally>;
+
+/** Crews through which somebody may make a round on a date. */
+export const WearingCrews = z.object({
+  rows: z.array(
+    z.object({ id: z.uuid(), name: z.string(), siteId: z.uuid(), siteName: z.string() }),
+  ),
+});
+export type WearingCrews = z.infer<typeof WearingCrews>;

@@ -1,7 +1,7 @@
 import { z } from "zod";
 import { Can, EmployeeNumber, IsoDate, Language, Name, PageQuery, pageOf } from "./common";
 import { DayFigures } from "./finding";
-import { Size } from "./fit";
+import { Gear, GearSet, Size } from "./fit";
 
 export const WorkerInput = z
   .object({
@@ -16,6 +16,8 @@ export const WorkerInput = z
     leftOn: IsoDate.nullable().default(null),
     mustWear: z.boolean().default(false),
     personalTargetDb: z.number().min(60).max(100).nullable().default(null),
+    /** Worn beside a protector in every task. */
+    wornGear: GearSet,
     /** Only officers send and see it. */
     requirementReason: z.string().trim().max(2000).nullable().default(null),
   })
@@ -147,6 +149,7 @@ export const WorkerView = z.object({
   leftOn: IsoDate.nullable(),
   mustWear: z.boolean(),
   personalTargetDb: z.number().nullable(),
+  wornGear: z.array(Gear),
   /** Null unless the reader is an officer. */
   requirementReason: z.string().nullable(),
   crews: z.array(

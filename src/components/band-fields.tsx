@@ -12,7 +12,7 @@ import { useLocale } from "../lib/i18n";
 import { bandLabel } from "./band-picture";
 import { Field } from "./form";
 import { NumberInput, type Typed } from "./number-input";
-import { readBands } from "./read-bands";
+import { readBands, readRow } from "./read-bands";
 
 export interface BandRow {
   /** Member of the value that holds this row; without it the value is the row itself. */
@@ -20,8 +20,7 @@ export interface BandRow {
   readonly label: string;
 }
 
-const COUNT = OCTAVE_BANDS_HZ.length;
-const emptyRow = (): Typed[] => Array.from({ length: COUNT }, () => null);
+const emptyRow = (count: number): Typed[] => Array.from({ length: count }, () => null);
 
 interface Fault {
   readonly band: number;
@@ -29,8 +28,8 @@ interface Fault {
   readonly message: string | null;
 }
 
-function faultsOf(errors: unknown, path: string): Fault[] {
-  return OCTAVE_BANDS_HZ.flatMap((hz, band) => {
+function faultsOf(errors: unknown, path: string, bandsHz: readonly number[]): Fault[] {
+  return bandsHz.flatMap((hz, band) => {
     const found = get(errors, `${path}.${band}`) as { type?: string; message?: string } | undefined;
     if (!found?.message) return [];
     return [{ band, message: found.type === "invalid_type" ? null : `${hz} Hz: ${found.message}` }];
@@ -38,8 +37,8 @@ function faultsOf(errors: unknown, path: string): Fault[] {
 }
 
 /**
- * One value for each octave band, in one or more rows; eight values can be pasted into any cell. All empty: not stated
- * (null).
+ * One value for each octave band, or each of other test frequencies, in one or more rows; all values can be pasted into
+ * any cell. All empty: not stated (null), where the field is optional.
  */
 export function BandFields<Values extends FieldValues, Output>({
   form,
@@ -48,6 +47,7 @@ export function BandFields<Values extends FieldValues, Output>({
   label,
   note,
   isOptional = true,
+  bandsHz = OCTAVE_BANDS_HZ,
 }: {
   form: UseFormReturn<Values, unknown, Output>;
   name: FieldPath<Values>;
@@ -55,6 +55,7 @@ export function BandFields<Values extends FieldValues, Output>({
   label: string;
   note?: ReactNode;
   isOptional?: boolean;
+  bandsHz?: readonly number[];
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
@@ -62,19 +63,22 @@ export function BandFields<Values extends FieldValues, Output>({
   const stored = field.value as unknown;
   const rowValues = (row: BandRow): Typed[] => {
     const found: unknown = row.key === undefined ? stored : get(stored, row.key);
-    return Array.isArray(found) ? (found as Typed[]) : emptyRow();
+    return Array.isArray(found) ? (found as Typed[]) : emptyRow(bandsHz.length);
   };
 
   function put(changed: BandRow, values: Typed[]) {
     const all = rows.map((row) => (row === changed ? values : rowValues(row)));
     const isEmpty = all.every((row) => row.every((value) => value === null));
-    if (isEmpty) field.onChange(null);
+    if (isEmpty && isOptional) field.onChange(null);
     else if (changed.key === undefined) field.onChange(values);
     else field.onChange(Object.fromEntries(rows.map((row, index) => [row.key, all[index]])));
   }
 
   function paste(row: BandRow, band: number, text: string): boolean {
-    const read = readBands(text, locale, band);
+    const read =
+      bandsHz === OCTAVE_BANDS_HZ
+        ? readBands(text, locale, band)
+        : readRow(text, locale, band, bandsHz.length);
     if (!read) return false;
     const values = [...rowValues(row)];
     values.splice(read.from, read.values.length, ...read.values);
@@ -84,7 +88,7 @@ export function BandFields<Values extends FieldValues, Output>({
 
   const { errors } = form.formState;
   const faults = rows.map((row) =>
-    faultsOf(errors, row.key === undefined ? name : `${name}.${row.key}`),
+    faultsOf(errors, row.key === undefined ? name : `${name}.${row.key}`, bandsHz),
   );
   const faultTexts = rows.flatMap((row, index) => {
     const found = faults[index] ?? [];
@@ -94,7 +98,7 @@ export function BandFields<Values extends FieldValues, Output>({
         ? [
             i18n.t("{row}: {bands} Hz missing.", {
               row: row.label,
-              bands: missing.map(({ band }) => OCTAVE_BANDS_HZ[band]).join(", "),
+              bands: missing.map(({ band }) => bandsHz[band]).join(", "),
             }),
           ]
         : []),
@@ -127,15 +131,17 @@ export function BandFields<Values extends FieldValues, Output>({
           {rows.map((row, rowIndex) => (
             <fieldset key={row.key ?? "row"}>
               <legend className={rows.length === 1 ? "sr-only" : undefined}>{row.label}</legend>
-              <div className="band-cells">
-                {OCTAVE_BANDS_HZ.map((hz, band) => (
+              <div className={`band-cells${bandsHz.length === 9 ? " is-nine" : ""}`}>
+                {bandsHz.map((hz, band) => (
                   <div key={hz}>
                     <span aria-hidden="true">{bandLabel(hz)}</span>
                     <NumberInput
                       className="input band-input"
                       aria-label={i18n.t("{row}, {hz} Hz", { row: row.label, hz })}
                       aria-invalid={
-                        faults[rowIndex]?.some((fault) => fault.band === band) || undefined
+                        rowErrors[rowIndex]?.message !== undefined ||
+                        faults[rowIndex]?.some((fault) => fault.band === band) ||
+                        undefined
                       }
                       aria-describedby={wires["aria-describedby"]}
                       value={rowValues(row)[band]}

@@ -205,6 +205,27 @@ export function outsideVerdict(i18n: I18n, locale: Locale, figures: DayFigures):
   );
 }
 
+/** In one word, where there is room for no more: the highest value without protection that a figure is over. */
+export function gravestOutside(i18n: I18n, locale: Locale, figures: DayFigures): OutsideVerdict {
+  const ruleSet = ruleSetVersion(figures.ruleSetKey, figures.ruleSetVersion);
+  const [highest] = figures.governingCriteria
+    .flatMap(({ criterionId, verdict, isClear }) => {
+      const criterion = ruleSet?.criteria.find(({ id }) => id === criterionId);
+      return verdict === "over" &&
+        criterion?.judged === "without-protection" &&
+        LEVEL_QUANTITIES.has(criterion.quantity)
+        ? [{ criterion, isClear }]
+        : [];
+    })
+    .sort((a, b) => levelOf(b.criterion) - levelOf(a.criterion));
+  if (!highest) return outsideVerdict(i18n, locale, figures);
+  return {
+    verdict: "over",
+    words: i18n.t("Over {value}", { value: criterionValue(locale, highest.criterion) }),
+    isClear: highest.isClear,
+  };
+}
+
 interface OutsideVerdict {
   readonly verdict: VerdictCode;
   readonly words: string;
@@ -370,6 +391,6 @@ export function useDecidedBy(figures: DayFigures): string | undefined {
     return isBoundReason(reason) ? openByBound(i18n, locale, figures) : reasonText(i18n, reason);
   }
   if (figures.whileWornDb === null) return figures.decidingTaskName ?? undefined;
-  const level = formatLevel(figures.whileWornDb, locale, figures.atEarBound);
+  const level = formatLevel(figures.whileWornDb, locale, figures.whileWornBound);
   return figures.decidingTaskName ? `${figures.decidingTaskName} ${level}` : level;
 }

@@ -42,6 +42,8 @@ export interface StripFacts {
   readonly atEarAsWorkedDb: number | null;
   /** At the ear while worn, in the task that decides the day's word. */
   readonly whileWornDb: number | null;
+  /** Absent: exact. */
+  readonly whileWornBound?: "exact" | "upper" | "lower";
   /** The first is the one that the verdict is about. */
   readonly limits: readonly StripLimit[];
   readonly targetBand: TargetBand | null;

@@ -23,7 +23,7 @@ import {
 import type { z } from "zod";
 import { formatShortDate, parseDate, parseTime } from "../../shared/format/date";
 import { parseDuration } from "../../shared/format/duration";
-import { editNumber, type Parsed, parseNumber } from "../../shared/format/number";
+import { fieldNumber, type Parsed, parseNumber } from "../../shared/format/number";
 import { type FieldIssue, issueText } from "../../shared/problems/issue-text";
 import { ApiError, connectionEvents } from "../lib/api";
 import { useLocale } from "../lib/i18n";
@@ -406,7 +406,7 @@ export function NumberField<Values extends FieldValues, Output>(props: FieldProp
       kind="number"
       code="not-a-number"
       parse={(text) => parseNumber(text, locale)}
-      write={(value: number) => editNumber(value, locale)}
+      write={(value: number) => fieldNumber(value, locale)}
     />
   );
 }
@@ -423,7 +423,7 @@ export function DurationField<Values extends FieldValues, Output>(
       code="not-a-duration"
       inputProps={{ inputMode: "text" }}
       parse={(text) => parseDuration(text, locale)}
-      write={(value: number) => editNumber(value, locale)}
+      write={(value: number) => fieldNumber(value, locale)}
     />
   );
 }

@@ -1,5 +1,5 @@
 import { type ComponentProps, useState } from "react";
-import { editNumber, parseNumber } from "../../shared/format/number";
+import { fieldNumber, parseNumber } from "../../shared/format/number";
 import { useLocale } from "../lib/i18n";
 import { Unreadable } from "./form";
 
@@ -18,7 +18,7 @@ export function NumberInput({
 }) {
   const locale = useLocale();
   const [typed, setTyped] = useState<{ text: string; value: Typed } | null>(null);
-  const written = value instanceof Unreadable ? value.text : editNumber(value ?? null, locale);
+  const written = value instanceof Unreadable ? value.text : fieldNumber(value ?? null, locale);
   return (
     <input
       inputMode="decimal"

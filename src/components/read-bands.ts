@@ -19,7 +19,8 @@ function frequencyOf(cell: string): number | null {
   return THIRDS_HZ.includes(hz) ? hz : null;
 }
 
-function read(cell: string, locale: Locale): Typed {
+/** A number as typed, nothing, or what stays as it is because it can't be read. */
+export function readCell(cell: string, locale: Locale): Typed {
   const parsed = parseNumber(cell, locale);
   if (parsed.kind === "ok") return parsed.value;
   if (parsed.kind === "empty") return null;
@@ -46,7 +47,7 @@ function fromTable(lines: readonly string[][], locale: Locale): Typed[] | null {
     const hz = frequencyOf(label);
     const level = cells.find((cell) => cell !== "");
     if (hz !== null && level !== undefined && lines.length > 1)
-      columns.set(hz, read(level, locale));
+      columns.set(hz, readCell(level, locale));
   }
   if (OCTAVE_BANDS_HZ.slice(1).every((hz) => columns.has(hz))) return fromFrequencies(columns);
   for (const [index, line] of lines.entries()) {
@@ -56,7 +57,7 @@ function fromTable(lines: readonly string[][], locale: Locale): Typed[] | null {
     // The row of levels may have a name before it, or none where the row of frequencies has one.
     const shift = next.length - line.length;
     const named = places.flatMap((hz, place) =>
-      hz === null ? [] : [[hz, read(next[place + shift] ?? "", locale)] as const],
+      hz === null ? [] : [[hz, readCell(next[place + shift] ?? "", locale)] as const],
     );
     return fromFrequencies(new Map(named));
   }
@@ -75,19 +76,41 @@ export interface BandsRead {
  * value, which is a cell's own.
  */
 export function readBands(text: string, locale: Locale, at = 0): BandsRead | null {
+  const rows = cellsOf(text);
+  const table = fromTable(rows, locale);
+  if (table) return { from: 0, values: table };
+  return fromCells(rows, locale, COUNT, (count) => (count === COUNT - 1 ? 1 : at));
+}
+
+/** A row or a column of values at `count` test frequencies; fewer go on from where they were pasted. Null as above. */
+export function readRow(text: string, locale: Locale, at: number, count: number): BandsRead | null {
+  return fromCells(cellsOf(text), locale, count, () => at);
+}
+
+/** What a spreadsheet or a report has in cells, line by line: by tabs or semicolons where there are any, else by blanks. */
+export function cellsOf(text: string): string[][] {
   const lines = text
     .replace(/(\d)[ \u00a0]+(k?hz)\b/gi, "$1$2")
     .split(/\r\n|\r|\n/)
     .map((line) => line.trim())
     .filter((line) => line !== "");
   const hasTabs = lines.some((line) => /[\t;]/.test(line));
-  const rows = lines.map((line) =>
+  return lines.map((line) =>
     line.split(hasTabs ? /[\t;]/ : /[ \u00a0]+/).map((cell) => cell.trim()),
   );
-  const table = fromTable(rows, locale);
-  if (table) return { from: 0, values: table };
+}
+
+function fromCells(
+  rows: readonly string[][],
+  locale: Locale,
+  count: number,
+  startOf: (cells: number) => number,
+): BandsRead | null {
   const cells = rows.flat().filter((cell) => cell !== "");
   if (cells.length < 2) return null;
-  const from = cells.length === COUNT ? 0 : cells.length === COUNT - 1 ? 1 : at;
-  return { from, values: cells.slice(0, COUNT - from).map((cell) => read(cell, locale)) };
+  const from = cells.length === count ? 0 : startOf(cells.length);
+  return { from, values: cells.slice(0, count - from).map((cell) => readCell(cell, locale)) };
 }
+
+/** Whether a cell names a frequency of an octave or third-octave. */
+export const isFrequency = (cell: string): boolean => frequencyOf(cell) !== null;

@@ -61,7 +61,7 @@ export function stripLabel(i18n: I18n, props: StripWords): string {
   if (props.hasProtector === "no") sentences.push(i18n.t("No protector."));
   else if (props.hasProtector === "unknown") sentences.push(i18n.t("Protector not known."));
   else if (props.word && props.whileWornDb !== null) {
-    const worn = formatLevel(props.whileWornDb, locale, props.atEarBound);
+    const worn = formatLevel(props.whileWornDb, locale, props.whileWornBound);
     const word = protectorSentence(i18n, props.word);
     sentences.push(
       props.decidingTask

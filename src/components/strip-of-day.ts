@@ -49,6 +49,7 @@ export function stripOfDay(figures: DayFigures, frame: StripFrame): StripWords {
     atEarActiveDb: figures.atEarActiveDb,
     atEarAsWorkedDb: figures.atEarAsWorkedDb,
     whileWornDb: figures.whileWornDb,
+    whileWornBound: figures.whileWornBound,
     ...groundOf(figures, frame),
     isExpected: false,
     hasProtector: figures.hasProtector,

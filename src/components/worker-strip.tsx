@@ -79,7 +79,9 @@ export function WorkerStrip(props: StripWords) {
       )}
       {innerMark && props.atEarDb !== null && (
         <text className="strip-worker-text" x={Math.max(0, innerMark.x - 9)} y={boxHeight + 20}>
-          <tspan fontWeight={640}>{formatWholeLevel(props.atEarDb, locale)}</tspan>{" "}
+          <tspan fontWeight={640}>
+            {formatWholeLevel(props.atEarDb, locale, props.limits[0]?.levelDb)}
+          </tspan>{" "}
           {i18n.t("at your ear")}
         </text>
       )}

@@ -11,6 +11,12 @@ import { api } from "./api";
  * same keys, so that a list is loaded once and a change of it is seen everywhere.
  */
 export const references = {
+  /** Of all sites that the reader knows. */
+  everyTask: () =>
+    queryOptions({
+      queryKey: ["tasks", "list", null],
+      queryFn: ({ signal }) => api.get("/tasks", { schema: TaskList, signal }),
+    }),
   tasks: (siteId: string) =>
     queryOptions({
       queryKey: ["tasks", "list", siteId],

@@ -10,6 +10,7 @@ import type {
 } from "../../shared/acoustics/types";
 import { formatLimit } from "../../shared/format/level";
 import type { Locale } from "../../shared/i18n/index";
+import type { Gear } from "../../shared/schemas/fit";
 import type { InstrumentView } from "../../shared/schemas/run";
 
 export function protectorKindWord(i18n: I18n, kind: ProtectorKind): string {
@@ -36,6 +37,27 @@ export function protectorKindWord(i18n: I18n, kind: ProtectorKind): string {
       return i18n.t("Communication headset");
   }
 }
+
+/** Whether a fit passed; null: there was nothing to pass. */
+export function passWord(i18n: I18n, hasPassed: boolean | null): string {
+  if (hasPassed === null) return i18n.t("Nothing to pass");
+  return hasPassed ? i18n.t("Fits") : i18n.t("Does not fit");
+}
+
+export function gearWord(i18n: I18n, gear: Gear): string {
+  switch (gear) {
+    case "helmet":
+      return i18n.t("helmet");
+    case "glasses":
+      return i18n.t("glasses");
+    case "respirator":
+      return i18n.t("respirator");
+  }
+}
+
+/** "helmet, glasses"; null: none. */
+export const gearWords = (i18n: I18n, gear: readonly Gear[]): string | null =>
+  gear.length > 0 ? gear.map((one) => gearWord(i18n, one)).join(", ") : null;
 
 export function zoneWord(i18n: I18n, zone: Zone): string {
   switch (zone) {

@@ -122,15 +122,26 @@ export function Component() {
               id: "change",
               head: <span className="sr-only">{i18n.t("What can be done")}</span>,
               kind: "right",
-              cell: ({ id, name, can }) =>
-                can.change && (
-                  <TextButton
-                    aria-label={i18n.t("Change {name}", { name })}
-                    onClick={() => edit(id)}
-                  >
-                    {i18n.t("Change")}
-                  </TextButton>
-                ),
+              cell: ({ id, name, zone, isArchived, can }) => (
+                <span className="flex flex-wrap justify-end gap-x-4">
+                  {zone !== "none" && !isArchived && (
+                    <TextLink
+                      aria-label={i18n.t("Sign of {name}", { name })}
+                      to={paths.zoneSign(id)}
+                    >
+                      {i18n.t("Sign")}
+                    </TextLink>
+                  )}
+                  {can.change && (
+                    <TextButton
+                      aria-label={i18n.t("Change {name}", { name })}
+                      onClick={() => edit(id)}
+                    >
+                      {i18n.t("Change")}
+                    </TextButton>
+                  )}
+                </span>
+              ),
             },
           ]}
         />

@@ -8,6 +8,7 @@ import { stripFrame } from "../components/day-figures";
 import { Empty } from "../components/empty";
 import { Failed } from "../components/failed";
 import { InHead } from "../components/in-head";
+import { TextLink } from "../components/link";
 import { Folio, PageBody } from "../components/page";
 import { AskOfficer } from "../features/crew-sheet/ask-officer";
 import { crewSheetQueries } from "../features/crew-sheet/queries";
@@ -21,7 +22,7 @@ import {
   splitExpected,
   splitLast,
 } from "../features/crew-sheet/sheet-parts";
-import { useUser } from "../features/session/session";
+import { hasRole, useUser } from "../features/session/session";
 import { useLocale } from "../lib/i18n";
 import { usePageTitle } from "../lib/page-title";
 import { useNow } from "../lib/use-now";
@@ -65,6 +66,7 @@ function NoCrewHead() {
 function CrewSheet({ crewId }: { crewId: string }) {
   const { i18n } = useLingui();
   const locale = useLocale();
+  const user = useUser();
   const [search] = useSearchParams();
   const asked = search.get("show");
   const shows: Part = isPart(asked) ? asked : "expected";
@@ -104,6 +106,14 @@ function CrewSheet({ crewId }: { crewId: string }) {
           />
         ) : (
           <SheetRows {...common} part="expected" rows={today} />
+        )}
+        {hasRole(user, "supervisor", "officer") && (
+          <TextLink
+            className="sheet-more"
+            to={{ pathname: paths.wearingRound, search: `?crew=${crewId}` }}
+          >
+            {i18n.t("Wearing round: who wears it?")}
+          </TextLink>
         )}
       </SheetFrame>
     );

@@ -256,7 +256,7 @@ function Evidence({ finding }: { finding: FindingView }) {
             beneath={
               day.whileWornDb === null
                 ? undefined
-                : [day.decidingTaskName, formatLevel(day.whileWornDb, locale, day.atEarBound)]
+                : [day.decidingTaskName, formatLevel(day.whileWornDb, locale, day.whileWornBound)]
                     .filter(Boolean)
                     .join(" ")
             }

@@ -6,7 +6,7 @@ import { formatLevel, formatLimit } from "../../shared/format/level";
 import { ruleSetVersion } from "../../shared/rule-sets";
 import type { FittingDesk } from "../../shared/schemas/fit";
 import { localDate } from "../../shared/time/zone";
-import { Button } from "../components/button";
+import { Button, ButtonLink } from "../components/button";
 import { Empty } from "../components/empty";
 import { Failed } from "../components/failed";
 import { TextButton, TextLink } from "../components/link";
@@ -161,9 +161,12 @@ function AtDesk({
         )}
         <Section title={i18n.t("What suits this noise")} id="candidates">
           <CandidatesTable
+            caption={i18n.t("Devices in the order in which they suit this noise")}
+            inHead={i18n.t("To be tried")}
             candidates={desk.candidates}
-            chosenId={chosenId}
-            onTry={(modelId) => form.current?.choose(modelId)}
+            chosen={chosenId}
+            pickLabel={(protector) => i18n.t("Try {protector}", { protector })}
+            onPick={({ modelId }) => form.current?.choose(modelId)}
           />
         </Section>
       </div>
@@ -248,6 +251,11 @@ function AtDesk({
           onRetry={() => void issues.refetch()}
           empty={<Empty title={i18n.t("Nothing was handed out yet.")} />}
         />
+        {desk.issued.length > 0 && (
+          <p className="after-table">
+            <ButtonLink to={paths.slips([worker.id])}>{i18n.t("Print the slip")}</ButtonLink>
+          </p>
+        )}
       </Section>
     </div>
   );

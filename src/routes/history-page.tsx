@@ -4,6 +4,7 @@ import { useQuery, useQueryClient } from "@tanstack/react-query";
 import { useMemo, useState } from "react";
 import { useParams } from "react-router-dom";
 import { formatDate, formatInstant } from "../../shared/format/date";
+import { formatBoundedDose } from "../../shared/format/dose";
 import { formatDuration } from "../../shared/format/duration";
 import { formatLevel } from "../../shared/format/level";
 import { formatNumber } from "../../shared/format/number";
@@ -43,7 +44,6 @@ import {
   boundWord,
   clockOf,
   criterionText,
-  doseText,
   lengthText,
   rangeText,
 } from "../features/histories/history-words";
@@ -373,7 +373,7 @@ function headText(i18n: I18n, { counted, everything }: HistoryAnalysis, locale: 
   if (governing)
     parts.push(
       i18n.t("dose {dose} against {criterion}, {bound}", {
-        dose: doseText(governing.dosePct, governing.bound, locale),
+        dose: formatBoundedDose(governing.dosePct, governing.bound, locale),
         criterion: withinSentence(criterionText(i18n, governing, locale), locale),
         bound: boundWord(i18n, governing.bound),
       }),
@@ -422,7 +422,7 @@ function summaryText(
     ...analysis.runningDose.map((dose) =>
       i18n.t("Dose at the end against {criterion}: {dose}.", {
         criterion: withinSentence(criterionText(i18n, dose, locale), locale),
-        dose: doseText(dose.dosePct.at(-1) ?? null, dose.bound, locale),
+        dose: formatBoundedDose(dose.dosePct.at(-1) ?? null, dose.bound, locale),
       }),
     ),
     ...leftOut.map((one) => i18n.t("Left out: {range}.", { range: rangeText(clock, one) })),

@@ -17,12 +17,13 @@ import {
 import { FormProblem } from "../components/form-problem";
 import { TextLink } from "../components/link";
 import { Folio, PageBody, PageHead } from "../components/page";
-import { ProtectorDataFields } from "../features/protectors/data-fields";
+import { focusFirstFault, ProtectorDataFields } from "../features/protectors/data-fields";
 import { protectorKinds } from "../features/protectors/kinds";
 import { protectorQueries } from "../features/protectors/queries";
 import { useUser } from "../features/session/session";
 import { api } from "../lib/api";
 import { useChangeKey } from "../lib/change-key";
+import { useOneAtATime } from "../lib/one-at-a-time";
 import { paths } from "../paths";
 
 /** A new protector with its first data. */
@@ -31,6 +32,7 @@ export function Component() {
   const navigate = useNavigate();
   const client = useQueryClient();
   const changeKey = useChangeKey();
+  const { begin, end } = useOneAtATime();
   const timeZone = useUser().sites[0]?.timeZone ?? "UTC";
   const form = useSchemaForm(NewProtectorInput, {
     defaultValues: {
@@ -45,6 +47,14 @@ export function Component() {
         slc80Db: null,
         bands: null,
         active: null,
+        percentile: null,
+        usLabel: null,
+        subjectsDb: null,
+        sizes: [],
+        worksWith: { helmet: null, glasses: null, respirator: null },
+        cushionsEveryDays: null,
+        tipsEveryDays: null,
+        auClass: null,
         effectiveFrom: localDateOf(new Date().toISOString(), timeZone),
         reason: null,
       },
@@ -64,6 +74,7 @@ export function Component() {
       void navigate(paths.protector(view.id));
     },
     onError: showIssuesOn(form, i18n),
+    onSettled: end,
   });
   return (
     <>
@@ -77,7 +88,12 @@ export function Component() {
         />
         <Form
           aria-label={i18n.t("New protector")}
-          onSubmit={form.handleSubmit((body) => create.mutate(body))}
+          onSubmit={form.handleSubmit(
+            (body) => {
+              if (begin()) create.mutate(body);
+            },
+            () => focusFirstFault(i18n.t("New protector")),
+          )}
         >
           <TextField form={form} name="name" label={i18n.t("Name")} />
           <SelectField

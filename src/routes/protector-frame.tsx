@@ -10,7 +10,15 @@ export function ProtectorWays() {
   const items = [
     { to: paths.protectors, label: i18n.t("Register"), isFor: true },
     { to: paths.fitting, label: i18n.t("Fit and issue"), isFor: hasRole(user, "officer") },
+    { to: paths.choose, label: i18n.t("Choose"), isFor: hasRole(user, "officer", "auditor") },
     { to: paths.fits, label: i18n.t("Fit tests"), isFor: hasRole(user, "officer", "auditor") },
+    { to: paths.wearing, label: i18n.t("Wearing rounds"), isFor: true },
+    {
+      to: paths.signals,
+      label: i18n.t("Warning signals"),
+      isFor: hasRole(user, "officer", "auditor"),
+    },
+    { to: paths.stock, label: i18n.t("Stock"), isFor: hasRole(user, "officer", "auditor") },
   ].filter(({ isFor }) => isFor);
   return (
     <span className="ways">

@@ -9,24 +9,31 @@ import { DataTable } from "../components/data-table";
 import { Failed } from "../components/failed";
 import { TextLink } from "../components/link";
 import { Folio, Leaders, MarginNote, PageBody, PageHead, Section } from "../components/page";
+import { AtEar } from "../features/at-ear/at-ear";
 import { ActivePart } from "../features/protectors/active-part";
 import { AttenuationByBand } from "../features/protectors/attenuation";
+import { Combinations } from "../features/protectors/combinations";
+import { DataSheets } from "../features/protectors/data-sheets";
+import { LabelAndTestData } from "../features/protectors/label-and-test-data";
 import { labelledData } from "../features/protectors/labelled-data";
 import { ProtectorDataForm } from "../features/protectors/protector-data-form";
 import { ProtectorHeadForm } from "../features/protectors/protector-head-form";
 import { protectorQueries } from "../features/protectors/queries";
+import { UseFacts } from "../features/protectors/use-facts";
 import { useUser } from "../features/session/session";
 import { useEditParam } from "../lib/edit-param";
 import { useLocale } from "../lib/i18n";
 import { protectorKindWord } from "../lib/register-words";
 import { paths } from "../paths";
+import "../styles/protectors.css";
 
 /** One protector: what its cup or plug takes away, its active part apart, and how its data came about. */
 export function Component() {
   const { i18n } = useLingui();
   const locale = useLocale();
   const { id = "" } = useParams();
-  const timeZone = useUser().sites[0]?.timeZone ?? "UTC";
+  const { sites } = useUser();
+  const timeZone = sites[0]?.timeZone ?? "UTC";
   const { editing, edit, close } = useEditParam();
   const [isChanged, setIsChanged] = useState(false);
   const { data: protector, error, refetch } = useQuery(protectorQueries.one(id));
@@ -49,7 +56,13 @@ export function Component() {
           <>
             <MarginNote title={i18n.t("On the label")} isRuled>
               {numbers.length > 0 ? (
-                <Leaders items={numbers.map((item) => ({ ...item, value: `${item.value} dB` }))} />
+                <Leaders
+                  items={numbers.map(({ key, label, value, isLevel }) => ({
+                    key,
+                    label,
+                    value: isLevel ? `${value} dB` : value,
+                  }))}
+                />
               ) : (
                 <p className="not-assessed">{i18n.t("no single number stated")}</p>
               )}
@@ -117,6 +130,25 @@ export function Component() {
             <ActivePart active={data.active} />
           </Section>
         )}
+        <AtEar protector={protector} sites={sites} />
+        <Section title={i18n.t("Label and test data")} id="label">
+          <LabelAndTestData data={data} />
+        </Section>
+        <Section title={i18n.t("Sizes, what it goes with, replacement")} id="use">
+          <UseFacts kind={protector.kind} data={data} />
+        </Section>
+        <Section title={i18n.t("Worn together with")} id="together">
+          <Combinations
+            protector={protector}
+            mayChange={mayChange}
+            timeZone={timeZone}
+            today={today}
+            onSaved={() => setIsChanged(true)}
+          />
+        </Section>
+        <Section title={i18n.t("Data sheets")} id="sheets">
+          <DataSheets modelId={protector.id} mayChange={mayChange} timeZone={timeZone} />
+        </Section>
         <Section title={i18n.t("How the data came about")} id="history">
           <DataTable
             caption={i18n.t("History of the data")}

@@ -1,6 +1,7 @@
 import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { formatLevel } from "../../shared/format/level";
+import { NO_FIGURE } from "../../shared/format/number";
 import type { ProtectorView } from "../../shared/schemas/protector";
 import { ButtonLink } from "../components/button";
 import { DataTable } from "../components/data-table";
@@ -11,6 +12,7 @@ import { protectorQueries } from "../features/protectors/queries";
 import { hasRole, useUser } from "../features/session/session";
 import { useLocale } from "../lib/i18n";
 import { protectorKindWord } from "../lib/register-words";
+import { useIsPhone } from "../lib/use-is-phone";
 import { paths } from "../paths";
 import { ProtectorWays } from "./protector-frame";
 
@@ -24,6 +26,7 @@ const ORDER: readonly Group[] = ["passive", "active", "archived"];
 export function Component() {
   const { i18n } = useLingui();
   const locale = useLocale();
+  const isPhone = useIsPhone();
   const isOfficer = hasRole(useUser(), "officer");
   const { data, isPending, error, refetch } = useQuery(protectorQueries.list());
   const rows = (data?.rows ?? []).toSorted(
@@ -35,12 +38,23 @@ export function Component() {
     archived: i18n.t("No longer given out"),
   };
   const wearers = rows.reduce((sum, row) => sum + row.wearersToday, 0);
+  /** The heading says whether it has an active part, except of what is no longer given out. */
+  const kindOf = ({ kind, isArchived, data: { active } }: ProtectorView) =>
+    isArchived && active
+      ? i18n.t("{kind}, with an active part", { kind: protectorKindWord(i18n, kind) })
+      : protectorKindWord(i18n, kind);
+  const percentile = ({ data: { percentile: pair } }: ProtectorView) =>
+    pair &&
+    i18n.t("{most} to {few}", {
+      most: formatLevel(pair.mostDb, locale),
+      few: formatLevel(pair.fewDb, locale),
+    });
   const label = (id: "usRatingDb" | "snrDb" | "hDb" | "mDb" | "lDb" | "slc80Db", head: string) => ({
     id,
     head,
     unit: "dB",
     kind: "figure" as const,
-    hidesOnPhone: id !== "snrDb" && id !== "usRatingDb",
+    hidesOnPhone: true,
     sortValue: (row: ProtectorView) => row.data[id],
     cell: (row: ProtectorView) => formatLevel(row.data[id], locale),
   });
@@ -86,15 +100,30 @@ export function Component() {
               head: i18n.t("Protector"),
               isRowHead: true,
               sortValue: (row) => row.name,
-              cell: (row) => <TextLink to={paths.protector(row.id)}>{row.name}</TextLink>,
+              cell: (row) => (
+                <span className="two-lines">
+                  <TextLink to={paths.protector(row.id)}>{row.name}</TextLink>
+                  {isPhone && <span className="beneath">{kindOf(row)}</span>}
+                </span>
+              ),
             },
             {
               id: "kind",
               head: i18n.t("Kind"),
+              hidesOnPhone: true,
               sortValue: (row) => protectorKindWord(i18n, row.kind),
-              cell: (row) => protectorKindWord(i18n, row.kind),
+              cell: kindOf,
             },
             label("usRatingDb", i18n.t("US number")),
+            {
+              id: "percentile",
+              head: i18n.t("Most to few users"),
+              unit: "dB",
+              kind: "figure",
+              hidesOnPhone: true,
+              sortValue: ({ data: { percentile: pair } }) => pair?.mostDb ?? null,
+              cell: (row) => percentile(row) ?? NO_FIGURE,
+            },
             label("snrDb", i18n.t("SNR")),
             label("hDb", i18n.t("H")),
             label("mDb", i18n.t("M")),
@@ -113,6 +142,30 @@ export function Component() {
                   i18n.t("63 Hz to 8 kHz")
                 ),
             },
+            ...(isPhone
+              ? [
+                  {
+                    id: "label",
+                    head: i18n.t("Label"),
+                    unit: "dB",
+                    kind: "right" as const,
+                    cell: ({ data: { snrDb, usRatingDb } }: ProtectorView) => (
+                      <span className="two-lines">
+                        {snrDb !== null && (
+                          <span>
+                            {i18n.t("SNR {level}", { level: formatLevel(snrDb, locale) })}
+                          </span>
+                        )}
+                        {usRatingDb !== null && (
+                          <span>
+                            {i18n.t("US {level}", { level: formatLevel(usRatingDb, locale) })}
+                          </span>
+                        )}
+                      </span>
+                    ),
+                  },
+                ]
+              : []),
             {
               id: "wearers",
               head: i18n.t("Assigned today"),

@@ -117,6 +117,7 @@ export function Component() {
                     evaluation={data.evaluation}
                     workingName={workingName(data.id)}
                     strip={<ResultStrip result={data} />}
+                    seesMethods={hasRole(user, "officer", "auditor", "supervisor")}
                   />
                 </Suspense>
               ) : (
@@ -185,10 +186,12 @@ function ResultStrip({ result: { figures } }: { result: ResultView }) {
           <span>
             {figures.decidingTaskName
               ? i18n.t("▲ {level} while worn, {task}", {
-                  level: level(figures.whileWornDb),
+                  level: formatLevel(figures.whileWornDb, locale, figures.whileWornBound),
                   task: figures.decidingTaskName,
                 })
-              : i18n.t("▲ {level} while worn", { level: level(figures.whileWornDb) })}
+              : i18n.t("▲ {level} while worn", {
+                  level: formatLevel(figures.whileWornDb, locale, figures.whileWornBound),
+                })}
           </span>
         )}
         {figures.ownTargetDb !== null && (

@@ -13,6 +13,7 @@ import { localDate } from "../../shared/time/zone";
 import { Button, ButtonLink } from "../components/button";
 import { ComboboxField } from "../components/combobox-field";
 import { Failed } from "../components/failed";
+import { FileInput } from "../components/file-input";
 import {
   CheckField,
   DateField,
@@ -33,7 +34,6 @@ import { Folio, PageBody, PageHead } from "../components/page";
 import { SpectrumField, useSpectrumCheck } from "../components/spectrum-field";
 import { instrumentQueries } from "../features/instruments/queries";
 import { doubtSentence } from "../features/outings/doubt-words";
-import { FileInput } from "../features/outings/file-input";
 import { type Overlap, overlapOf } from "../features/outings/overlap";
 import { outingQueries, useRecordSample } from "../features/outings/queries";
 import {

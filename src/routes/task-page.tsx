@@ -6,7 +6,7 @@ import type { OctaveBandValues } from "../../shared/acoustics/types";
 import { formatDate, formatInstant, formatShortDate } from "../../shared/format/date";
 import { formatLevel, formatLevelWithUnit } from "../../shared/format/level";
 import { formatNumber } from "../../shared/format/number";
-import { Button } from "../components/button";
+import { Button, ButtonLink } from "../components/button";
 import { RecomputeProgress } from "../components/change-preview";
 import { DataTable } from "../components/data-table";
 import { Empty } from "../components/empty";
@@ -14,6 +14,7 @@ import { Failed } from "../components/failed";
 import { TextButton, TextLink } from "../components/link";
 import { Folio, Leaders, MarginNote, PageBody, PageHead, Section } from "../components/page";
 import { areaQueries } from "../features/areas/queries";
+import { impulseTypeWord } from "../features/tasks/impulse-words";
 import { LevelForm } from "../features/tasks/level-form";
 import { LevelSource, SurveyOfLevel } from "../features/tasks/level-source";
 import { taskQueries } from "../features/tasks/queries";
@@ -22,6 +23,7 @@ import { SpectrumSource } from "../features/tasks/spectrum-source";
 import { TaskHeadForm } from "../features/tasks/task-head-form";
 import { useLocale } from "../lib/i18n";
 import {
+  gearWords,
   gradeWord,
   instrumentClassWord,
   metricWord,
@@ -95,6 +97,15 @@ export function Component() {
                 <p className="not-assessed">{i18n.t("no level yet")}</p>
               )}
             </MarginNote>
+            {level && (level.impulseType !== null || level.peak !== null) && (
+              <MarginNote title={i18n.t("Kind of impulse")}>
+                <p className={level.impulseType === null ? "not-assessed" : undefined}>
+                  {level.impulseType === null
+                    ? i18n.t("not stated: a peak at the ear is not assessed")
+                    : impulseTypeWord(i18n, level.impulseType)}
+                </p>
+              </MarginNote>
+            )}
             {level?.surveyId && (
               <MarginNote title={i18n.t("Where it comes from")}>
                 <LevelSource level={level} />
@@ -103,6 +114,9 @@ export function Component() {
             <MarginNote title={i18n.t("Area")}>
               <p>{task.areaName ?? i18n.t("None")}</p>
               <p>{zoneWord(i18n, task.zone)}</p>
+            </MarginNote>
+            <MarginNote title={i18n.t("Asked for beside a protector")}>
+              <p>{gearWords(i18n, task.requiredGear) ?? i18n.t("None")}</p>
             </MarginNote>
             <MarginNote title={i18n.t("Rest on it")}>
               <p>
@@ -142,6 +156,9 @@ export function Component() {
                   {i18n.t("New level")}
                 </Button>
                 <Button onClick={() => open("name")}>{i18n.t("Rename, move or archive")}</Button>
+                {level && (
+                  <ButtonLink to={paths.chooseFor(id)}>{i18n.t("Choose a protector")}</ButtonLink>
+                )}
               </>
             )
           }

@@ -16,6 +16,7 @@ import {
   TextAreaField,
   TextField,
 } from "../components/form";
+import { GearField } from "../components/gear-field";
 import { TextLink } from "../components/link";
 import { Folio, PageBody, PageHead } from "../components/page";
 import { RecordForm } from "../components/record-form";
@@ -23,6 +24,7 @@ import { jobQueries } from "../features/jobs/queries";
 import { useUser } from "../features/session/session";
 import { workerQueries } from "../features/workers/queries";
 import { useLocale } from "../lib/i18n";
+import { gearWords } from "../lib/register-words";
 import { paths } from "../paths";
 import "../styles/findings.css";
 
@@ -40,6 +42,7 @@ const toBody = ({
   leftOn,
   mustWear,
   personalTargetDb,
+  wornGear,
   requirementReason,
 }: WorkerView): WorkerInput => ({
   siteId,
@@ -53,6 +56,7 @@ const toBody = ({
   leftOn,
   mustWear,
   personalTargetDb,
+  wornGear,
   requirementReason,
 });
 
@@ -135,6 +139,11 @@ function WorkerForm({ worker }: { worker: WorkerView | null }) {
         personalTargetDb === null ? "–" : formatLimit(personalTargetDb, locale),
     },
     {
+      key: "wornGear",
+      label: i18n.t("Worn beside a protector"),
+      show: ({ wornGear }) => text(gearWords(i18n, wornGear)),
+    },
+    {
       key: "requirementReason",
       label: i18n.t("Reason"),
       show: ({ requirementReason }) => text(requirementReason),
@@ -183,6 +192,7 @@ function WorkerForm({ worker }: { worker: WorkerView | null }) {
                   leftOn: null,
                   mustWear: false,
                   personalTargetDb: null,
+                  wornGear: [],
                   requirementReason: null,
                 }
           }
@@ -246,6 +256,14 @@ function WorkerForm({ worker }: { worker: WorkerView | null }) {
                   label={i18n.t("Left")}
                   isOptional
                   note={i18n.t("The last day of work here.")}
+                />
+                <GearField
+                  form={form}
+                  name="wornGear"
+                  label={i18n.t("Worn beside a protector")}
+                  note={i18n.t(
+                    "In every task; what a task asks for stands with the task. Protectors that don’t go with it are not offered.",
+                  )}
                 />
                 <CheckField
                   form={form}

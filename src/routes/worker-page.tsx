@@ -44,6 +44,7 @@ import { workerQueries } from "../features/workers/queries";
 import { SignInSlip } from "../features/workers/sign-in-slip";
 import { employerWords } from "../features/workers/workers-table";
 import { useLocale } from "../lib/i18n";
+import { gearWords } from "../lib/register-words";
 import { paths } from "../paths";
 import "../styles/findings.css";
 import "../styles/fits.css";
@@ -189,6 +190,9 @@ function Facts({ worker }: { worker: WorkerView }) {
       <Fact label={i18n.t("Employer")}>{employerWords(i18n, worker)}</Fact>
       <Fact label={i18n.t("Language")}>{LOCALE_NAMES[worker.language]}</Fact>
       <Fact label={i18n.t("Hired")}>{formatShortDate(worker.hiredOn, locale)}</Fact>
+      <Fact label={i18n.t("Worn beside a protector")}>
+        {gearWords(i18n, worker.wornGear) ?? i18n.t("nothing stated")}
+      </Fact>
       <Fact label={i18n.t("Sign-in")}>
         {worker.hasSignIn ? i18n.t("has one") : i18n.t("none yet")}
       </Fact>
@@ -272,7 +276,10 @@ function Protectors({ worker, today }: { worker: WorkerView; today: string }) {
       {worker.can.assign &&
         (asked === null ? (
           <p className="after-table">
-            <Button onClick={() => open()}>{i18n.t("Assign a protector")}</Button>
+            <Button onClick={() => open()}>{i18n.t("Assign a protector")}</Button>{" "}
+            {worker.assignments.length > 0 && (
+              <ButtonLink to={paths.slips([worker.id])}>{i18n.t("Print the slip")}</ButtonLink>
+            )}
           </p>
         ) : (
           <div className="inset-form">

@@ -4,6 +4,7 @@ import {
   buildArea,
   buildAssignment,
   buildCrew,
+  buildJob,
   buildProtector,
   buildSite,
   buildTask,
@@ -173,6 +174,18 @@ describeEndpoint({
   }),
 });
 describeEndpoint({
+  route: "GET /wearing-crews",
+  as: "officer",
+  not: "auditor",
+  event: null,
+  namesNothing: true,
+  bad: { path: "/wearing-crews?date=today" },
+  call: async (site) => {
+    await buildCrew({ site });
+    return { method: "get", path: `/wearing-crews?date=${daysFromToday(0)}` };
+  },
+});
+describeEndpoint({
   route: "GET /crews/:id/wearing-tally",
   as: "officer",
   not: "auditor",
@@ -294,6 +307,103 @@ test("what a round saw is the wearing time of a day that says none, until it is 
   });
   expect(struck.status).toBe(200);
   expect(await figures()).toMatchObject({ verdict: "not-assessed" });
+});
+
+test("a supervisor makes rounds among the people of the own crew on that date, and among no others", async () => {
+  const site = await buildSite();
+  const { organizationId } = site;
+  const user = await buildUser({ organizationId, roles: ["supervisor"] });
+  const task = await buildTask({ site, levelDb: 95 });
+  const [before, now] = [await buildWorker({ site }), await buildWorker({ site })];
+  const given = daysFromToday(-10);
+  const past = await buildCrew({
+    site,
+    members: [before],
+    supervisors: [user],
+    toDate: given,
+  });
+  const present = await buildCrew({ site, members: [now], supervisors: [user], fromDate: given });
+  const supervisor = await signInAs(user);
+  const crewsOn = async (date: string) =>
+    (await supervisor.get(`/wearing-crews?date=${date}`)).body.rows.map(
+      ({ id }: { id: string }) => id,
+    );
+  const [earlier, today] = [daysFromToday(-20), daysFromToday(0)];
+  expect(await crewsOn(earlier)).toEqual([past.id]);
+  expect(await crewsOn(today)).toEqual([present.id]);
+  const tallyStatus = async (crewId: string, date: string) =>
+    (await supervisor.get(`/crews/${crewId}/wearing-tally?date=${date}`)).status;
+  expect(await tallyStatus(past.id, earlier)).toBe(200);
+  expect(await tallyStatus(past.id, today)).toBe(404);
+  expect(await tallyStatus(present.id, earlier)).toBe(404);
+  const enter = async (workerId: string, seenOn: string) =>
+    (
+      await supervisor.post("/wearing-rounds", {
+        siteId: site.id,
+        seenOn,
+        looks: [{ workerId, taskId: task.id, wornCount: 1, seenCount: 1 }],
+      })
+    ).status;
+  expect(await enter(before.id, earlier)).toBe(201);
+  expect(await enter(before.id, today)).toBe(404);
+  expect(await enter(now.id, earlier)).toBe(404);
+});
+
+test("a worker says for themselves how long it was worn, and nothing of anybody else", async () => {
+  const site = await buildSite();
+  const { organizationId } = site;
+  const [own, other] = [await buildWorker({ site }), await buildWorker({ site })];
+  const task = await buildTask({ site, levelDb: 95 });
+  const worker = await signInAs(
+    await buildUser({ organizationId, roles: ["worker"], workerId: own.id }),
+  );
+  const say = async (workerId: string, source: string) =>
+    (
+      await worker.post("/wearing-rounds", {
+        siteId: site.id,
+        seenOn: daysFromToday(-1),
+        source,
+        looks: [{ workerId, taskId: task.id, wornCount: 3, seenCount: 4 }],
+      })
+    ).status;
+  expect(await say(own.id, "round")).toBe(403);
+  expect(await say(other.id, "own-report")).toBe(404);
+  expect(await say(own.id, "own-report")).toBe(201);
+  const [look] = await select<{ source: string; workerId: string }>(
+    `SELECT o.source, l.worker_id AS "workerId" FROM wearing_looks l JOIN wearing_rounds o ON o.id = l.round_id WHERE o.organization_id = $1`,
+    [organizationId],
+  );
+  expect(look).toEqual({ source: "own-report", workerId: own.id });
+});
+
+test("somebody on loan from another site is seen in the crew that they work in, in the tasks of its site", async () => {
+  const here = await buildSite();
+  const { organizationId } = here;
+  const there = await buildSite({ organizationId });
+  const [task, elsewhere] = [
+    await buildTask({ site: here, levelDb: 95 }),
+    await buildTask({ site: there, levelDb: 95 }),
+  ];
+  const job = await buildJob({
+    site: there,
+    tasks: [task, elsewhere].map(({ id: taskId }) => ({ taskId, durationMin: 240 })),
+  });
+  const lent = await buildWorker({ site: there, jobId: job.id });
+  const protector = await buildProtector({ organizationId, data: { snrDb: 28 } });
+  await buildAssignment({ worker: lent, inner: protector });
+  const crew = await buildCrew({ site: here, members: [lent] });
+  const officer = await signInAs(
+    await buildUser({ organizationId, roles: ["officer"], siteId: here.id }),
+  );
+  const date = daysFromToday(-1);
+  const tally = await officer.get(`/crews/${crew.id}/wearing-tally?date=${date}`);
+  expect(tally.body.workers).toMatchObject([{ id: lent.id, taskIds: [task.id] }]);
+  const round = await officer.post("/wearing-rounds", {
+    siteId: here.id,
+    seenOn: date,
+    looks: [{ workerId: lent.id, taskId: task.id, wornCount: 1, seenCount: 1 }],
+  });
+  expect(round.status).toBe(201);
 });
 
 test("a count enters the difference, and cushions are due by the model's interval from the last change", async () => {

@@ -26,9 +26,9 @@ const ACTION: DoseSettings = { criterionLevelDb: 90, exchangeRateDb: 5, threshol
 const LIMIT: DoseSettings = { criterionLevelDb: 90, exchangeRateDb: 5, thresholdDb: 90 };
 const FIVE: DoseSettings = { criterionLevelDb: 90, exchangeRateDb: 5, thresholdDb: null };
 const FOUR: DoseSettings = { criterionLevelDb: 85, exchangeRateDb: 4, thresholdDb: 80 };
-const NIOSH: DoseSettings = { criterionLevelDb: 85, exchangeRateDb: 3, thresholdDb: null };
+const ENERGY: DoseSettings = { criterionLevelDb: 85, exchangeRateDb: 3, thresholdDb: null };
 const THREE_80: DoseSettings = { criterionLevelDb: 85, exchangeRateDb: 3, thresholdDb: 80 };
-const ALL = [ACTION, LIMIT, FIVE, FOUR, NIOSH, THREE_80];
+const ALL = [ACTION, LIMIT, FIVE, FOUR, ENERGY, THREE_80];
 
 const channel = (kind: ChannelKind, levelsDb: readonly (number | null)[]): HistoryChannel => ({
   kind,
@@ -66,9 +66,14 @@ describe("a steady history equals the closed form", () => {
     expect(counted.maxSlow).toMatchObject({ levelDb, bound: "exact", from: "las" });
     for (const [place, settings] of ALL.entries()) {
       const figure = counted.doses[place]!;
-      near(figure.dosePct, dosePct([{ levelDb, durationMin }], { ...settings, referenceMin: 480 }));
+      // By energy, 10^((L − Lc)/10); under an exchange rate, 2^((L − Lc)/q).
+      const closed =
+        settings === ENERGY
+          ? (100 * durationMin * 10 ** ((levelDb - 85) / 10)) / 480
+          : dosePct([{ levelDb, durationMin }], { ...settings, referenceMin: 480 });
+      near(figure.dosePct, closed);
       expect(figure.bound).toBe("exact");
-      expect(figure.from).toBe(settings === NIOSH ? "laeq" : "las");
+      expect(figure.from).toBe(settings === ENERGY ? "laeq" : "las");
       if (figure.dosePct > 0) near(figure.averageDb, levelDb);
       else expect(figure.averageDb).toBeNull();
     }
@@ -81,6 +86,46 @@ describe("a steady history equals the closed form", () => {
       expect(figure).toMatchObject({ bound: "upper", from: "laeq" });
       near(figure!.dosePct, exact, 1 / 28_800);
     }
+  });
+});
+
+describe("2003/10/EC art. 2(b) and ISO 1999: a dose by energy says what LEX,8h says", () => {
+  const against = (criterionLevelDb: number): DoseSettings => ({ ...ENERGY, criterionLevelDb });
+
+  test.each([80, 85, 87])("8 h at %d dB are 100 % of it, neither more nor less", (levelDb) => {
+    const { counted } = evaluateHistory(
+      [steady("laeq", levelDb, 28_800)],
+      1,
+      [],
+      [against(levelDb)],
+    );
+    expect(counted.doses[0]!.dosePct).toBeCloseTo(100, 10);
+    expect(counted.doses[0]!.averageDb).toBeCloseTo(levelDb, 10);
+  });
+
+  // 100 · 10^((95.6936 − Lc)/10), of 0.64 · 8 h at 95.69 dB and 0.36 · 8 h at 95.70 dB.
+  test.each([
+    [85, "1173.2"],
+    [80, "3709.9"],
+    [87, "740.2"],
+  ])("8 h of LAeq 95.694 dB against %d dB: %s %%", (levelDb, printed) => {
+    const values = Array.from({ length: 28_800 }, (_, at) => (at < 18_432 ? 95.69 : 95.7));
+    const history = [channel("laeq", values)];
+    const { counted } = evaluateHistory(history, 1, [], [against(levelDb)]);
+    expect(counted.laeq?.levelDb).toAgreeWithPrinted("95.694");
+    const [figure] = counted.doses;
+    expect(figure?.dosePct).toAgreeWithPrinted(printed);
+    near(figure?.averageDb, counted.laeq!.levelDb);
+    const running = runningDose(history, 1, [], [against(levelDb)], 10);
+    near(running.doses[0]!.dosesPct.at(-1)!, figure!.dosePct);
+  });
+
+  test("from slow levels alone the least dose is that of the least energy", () => {
+    const history = [channel("las", [70, 90, 95, 85, 80, 60, 100])];
+    const { counted } = evaluateHistory(history, 1, [], [ENERGY]);
+    const { levelDb, durationS } = counted.laeq!;
+    expect(counted.doses[0]).toMatchObject({ bound: "lower", from: "las" });
+    near(counted.doses[0]!.dosePct, (100 * durationS * 10 ** ((levelDb - 85) / 10)) / 28_800);
   });
 });
 
@@ -252,9 +297,9 @@ describe("channels and what they can say", () => {
   };
 
   test.each([
-    [["laeq"], 1, NIOSH, ["exact", "laeq"]],
-    [["laeq", "las"], 60, NIOSH, ["exact", "laeq"]],
-    [["las"], 1, NIOSH, ["lower", "las"]],
+    [["laeq"], 1, ENERGY, ["exact", "laeq"]],
+    [["laeq", "las"], 60, ENERGY, ["exact", "laeq"]],
+    [["las"], 1, ENERGY, ["lower", "las"]],
     [["las"], 1, THREE_80, ["exact", "las"]],
     [["laeq"], 1, THREE_80, ["upper", "laeq"]],
     [["las"], 1, FIVE, ["exact", "las"]],

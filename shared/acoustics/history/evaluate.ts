@@ -40,7 +40,7 @@ const FINE_S = 1;
  *
  * | figure | exact | at most | at least |
  * | --- | --- | --- | --- |
- * | LAeq, and a dose at 3 dB without threshold | LAeq | | LAS (`leastEnergy`) |
+ * | LAeq, and a dose by energy | LAeq | | LAS (`leastEnergy`) |
  * | any other dose | LAS every second or finer | LAeq (`SlowDoseBound`), LASmax | coarser LAS (`leastDose`) |
  * | greatest slow level | LASmax; LAS every second or finer | LAeq (`boundDetector`), LAFmax | coarser LAS |
  *
@@ -94,9 +94,22 @@ export interface DoseRoute {
   readonly bound: Bound;
 }
 
-/** The energy law in the form of an exchange rate, without a threshold: what LAeq gives. */
-const isEnergyDose = ({ exchangeRateDb, thresholdDb }: DoseSettings): boolean =>
+/** A dose by energy: what LAeq gives. Three decibels with a threshold are an exchange rate. */
+export const isEnergyDose = ({ exchangeRateDb, thresholdDb }: DoseSettings): boolean =>
   exchangeRateDb === 3 && thresholdDb === null;
+
+/** Twice the energy is 10 lg 2 dB, and 2^(L/q) then is 10^(L/10). */
+const ENERGY_RATE_DB = 10 * Math.log10(2);
+
+/**
+ * The q of 2^(L/q). A rule that publishes a dose with a rate of 3 dB means 3; where the energy itself is meant, as in
+ * LEX,8h, the dose is 100 % exactly at the limit and its level is LEX,8h.
+ *
+ * @source iso-9612-2009 3.2
+ * @source niosh-98-126 1.1.2
+ */
+export const rateOf = (one: DoseSettings): number =>
+  isEnergyDose(one) ? ENERGY_RATE_DB : one.exchangeRateDb;
 
 /** Ways to a dose that the channels allow, one kind of bound only: exact before upper before lower. */
 export function doseRoutes(
@@ -121,7 +134,7 @@ export const firstCounting = ({ thresholdDb }: DoseSettings): number =>
 
 /** Percent a second at a level, 2^((L − Lc)/q), as a factor of 2^(L/q). */
 export const doseScale = (one: DoseSettings): number =>
-  (100 * 2 ** (-one.criterionLevelDb / one.exchangeRateDb)) / REFERENCE_S;
+  (100 * 2 ** (-one.criterionLevelDb / rateOf(one))) / REFERENCE_S;
 
 /** A history with what its parts share: tables by level, and the bounds of the detector. */
 export class History {
@@ -259,7 +272,7 @@ export class History {
         if (counts.total === 0) continue;
         const dosePct =
           route.bound === "lower"
-            ? this.leastDose(part, one, counts)
+            ? this.leastDose(part, one)
             : route.bound === "upper" && route.from === "laeq"
               ? mostByMeans.get(one)!
               : this.doseOf(counts, one);
@@ -282,21 +295,22 @@ export class History {
   }
 
   private doseOf({ counts, lowest, highest }: LevelCounts, one: DoseSettings): number {
-    const weights = this.weights(one.exchangeRateDb);
+    const rateDb = rateOf(one);
+    const weights = this.weights(rateDb);
     let sum = 0;
     for (let level = Math.max(lowest, firstCounting(one)); level <= highest; level++) {
       const count = counts[level + OFFSET]!;
-      if (count > 0) sum += count * weightAt(weights, level, one.exchangeRateDb);
+      if (count > 0) sum += count * weightAt(weights, level, rateDb);
     }
     return sum * this.intervalS * doseScale(one);
   }
 
   /** 2^(L/q) by level, filled as levels occur. */
-  weights(exchangeRateDb: number): Float64Array {
-    let table = this.tables.get(exchangeRateDb);
+  weights(rateDb: number): Float64Array {
+    let table = this.tables.get(rateDb);
     if (!table) {
       table = new Float64Array(2 * OFFSET);
-      this.tables.set(exchangeRateDb, table);
+      this.tables.set(rateDb, table);
     }
     return table;
   }
@@ -329,18 +343,18 @@ export class History {
     return this.detector;
   }
 
-  private leastDose(part: Part, one: DoseSettings, counts: LevelCounts): number {
+  private leastDose(part: Part, one: DoseSettings): number {
     const levels = this.levels("las");
-    if (!isEnergyDose(one)) return leastDose(levels, this.intervalS, part, one);
-    const durationS = counts.total * this.intervalS;
-    return leastEnergyDose(leastEnergy(levels, this.intervalS, part), durationS, one);
+    return isEnergyDose(one)
+      ? leastEnergy(levels, this.intervalS, part) * doseScale(one)
+      : leastDose(levels, this.intervalS, part, one);
   }
 }
 
-export function weightAt(weights: Float64Array, level: number, exchangeRateDb: number): number {
+export function weightAt(weights: Float64Array, level: number, rateDb: number): number {
   const known = weights[level + OFFSET]!;
   if (known > 0) return known;
-  const weight = 2 ** (level / (100 * exchangeRateDb));
+  const weight = 2 ** (level / (100 * rateDb));
   weights[level + OFFSET] = weight;
   return weight;
 }
@@ -361,7 +375,7 @@ function energiesOf(levels: Int16Array): Float64Array {
 function averageDb(dosePct: number, durationS: number, one: DoseSettings): number | null {
   if (dosePct === 0) return null;
   const share = (dosePct * REFERENCE_S) / (100 * durationS);
-  return one.criterionLevelDb + one.exchangeRateDb * Math.log2(share);
+  return one.criterionLevelDb + rateOf(one) * Math.log2(share);
 }
 
 /**
@@ -383,13 +397,6 @@ export function leastEnergy(levels: Int16Array, intervalS: number, part: Part): 
     if (added > 0) energy += SLOW_S * added;
   }
   return energy;
-}
-
-/** A dose by 2^(L/3) is at least that of the mean, its weight being convex in energy. */
-export function leastEnergyDose(energy: number, durationS: number, one: DoseSettings): number {
-  if (energy === 0) return 0;
-  const meanDb = 10 * Math.log10(energy / durationS);
-  return durationS * 2 ** (meanDb / one.exchangeRateDb) * doseScale(one);
 }
 
 /**

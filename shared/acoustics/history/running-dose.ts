@@ -5,9 +5,10 @@ import {
   doseScale,
   firstCounting,
   History,
+  isEnergyDose,
   leastEnergy,
-  leastEnergyDose,
   leastInterval,
+  rateOf,
   weightAt,
 } from "./evaluate";
 import {
@@ -95,17 +96,17 @@ function growth(
   const levels = history.levels(route.from);
   const { intervalS } = history;
   if (route.bound === "lower") {
-    if (one.exchangeRateDb === 3 && one.thresholdDb === null)
-      return leastEnergyGrowth(levels, intervalS, part, one, ends);
+    if (isEnergyDose(one)) return leastEnergyGrowth(levels, intervalS, part, one, ends);
     return sumGrowth(part, ends, doseScale(one), (index) =>
       leastInterval(levels, index, intervalS, one),
     );
   }
-  const weights = history.weights(one.exchangeRateDb);
+  const rateDb = rateOf(one);
+  const weights = history.weights(rateDb);
   const first = Math.max(firstCounting(one), MISSING + 1);
   return sumGrowth(part, ends, intervalS * doseScale(one), (index) => {
     const level = levels[index]!;
-    return level < first ? 0 : weightAt(weights, level, one.exchangeRateDb);
+    return level < first ? 0 : weightAt(weights, level, rateDb);
   });
 }
 
@@ -146,7 +147,7 @@ function boundGrowth(
   return growing;
 }
 
-/** The proof of each beginning. The mean falls in quiet; what was proved stays proved, up to what the whole proves. */
+/** The proof of each beginning. */
 function leastEnergyGrowth(
   levels: Int16Array,
   intervalS: number,
@@ -154,20 +155,12 @@ function leastEnergyGrowth(
   one: DoseSettings,
   ends: Int32Array,
 ): Float64Array {
-  const proved = new Float64Array(ends.length);
   let energy = 0;
-  let count = 0;
   let index = 0;
-  for (let point = 0; point < ends.length; point++) {
-    const end = ends[point]!;
+  const scale = doseScale(one);
+  return Float64Array.from(ends, (end) => {
     energy += leastEnergy(levels, intervalS, { mask, fromIndex: index, toIndex: end });
-    for (; index < end; index++) if (mask[index] === 1 && levels[index] !== MISSING) count++;
-    if (count > 0) proved[point] = leastEnergyDose(energy, count * intervalS, one);
-  }
-  const whole = proved[ends.length - 1]!;
-  let most = 0;
-  return proved.map((dose) => {
-    most = Math.max(most, dose);
-    return Math.min(most, whole);
+    index = end;
+    return energy * scale;
   });
 }

@@ -1,5 +1,6 @@
 import {
   accountedMin,
+  cutReading,
   governingReading,
   likenessFactor,
   missingTime,
@@ -238,6 +239,7 @@ export function scaleOf(
 ): Scale {
   const missing =
     missingTime(shift) ??
+    (cutReading(shift, outsideLaw) ? "time-unknown" : null) ??
     (shift.tasks.some(({ level, durationMin }) => level === null && durationMin > 0)
       ? "level-missing"
       : null);
@@ -454,6 +456,12 @@ function seeTask(
       word: wornWord,
       wordActive: noiseActiveDb === null ? null : word(noiseActiveDb),
       reason: task.wornPct === null ? "wearing-unknown" : isOpen ? bound : active.reason,
+      ...(isBounded && {
+        wornRangeDb: {
+          leastDb: Number.isFinite(leastDb) ? withAudioDb(noiseDb + leastDb, audioDb) : null,
+          mostDb: Number.isFinite(mostDb) ? withAudioDb(noiseDb + mostDb, audioDb) : null,
+        },
+      }),
       ...(audioDb !== null && { audio: { levelDb: audioDb, noiseDb, noiseActiveDb } }),
     },
   };

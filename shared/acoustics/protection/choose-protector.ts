@@ -5,6 +5,7 @@ import {
   type OctaveBandValues,
   type Protection,
   type ProtectorData,
+  type ProtectorKind,
   type ProtectorWord,
   type RuleSetVersion,
   type TaskLevel,
@@ -19,6 +20,20 @@ import { deratedAttenuationDb, derateType, hmlReductionDb } from "./single-numbe
 type Rule = RuleSetVersion["protection"];
 export type WornGear = "helmet" | "glasses" | "respirator";
 type WorksWith = Readonly<Record<WornGear, boolean | null>>;
+
+/** It sits in the ear, and a muff fits over it; a band would not. */
+export const isWornInside = (kind: ProtectorKind): boolean =>
+  kind === "foam-plug" ||
+  kind === "premoulded-plug" ||
+  kind === "custom-plug" ||
+  kind === "active-plug";
+
+/** It has cups that go over a plug. */
+export const isWornOver = (kind: ProtectorKind): boolean =>
+  kind === "earmuff" ||
+  kind === "helmet-earmuff" ||
+  kind === "active-earmuff" ||
+  kind === "communication-headset";
 
 /** A model, or two together, as the register offers it at a site. */
 export interface Offer extends Pick<Protection, "inner" | "outer" | "combinationBands"> {
@@ -144,19 +159,33 @@ export class ProtectorChoice {
     const { prepared } = this;
     const noises = wearer.noises.map(toNoise);
     const targetDb = targetOf(this.rule, wearer.personalTargetDb);
-    const found = prepared.map((one) => this.atEar(one, noises, fitOf(one, wearer), targetDb));
-    const places = Float64Array.from(
-      prepared,
-      (one, index) => placeOf(one, wearer, found[index]!) * prepared.length + index,
-    ).sort();
+    const count = prepared.length;
+    const found: Judged[] = [];
+    const places = new Float64Array(count);
+    for (let index = 0; index < count; index += 1) {
+      const one = prepared[index]!;
+      const fit = fitOf(one, wearer);
+      const atEar = this.atEar(one, noises, fit, targetDb);
+      const judged = {
+        atEar,
+        fit,
+        excludedBy: exclusionOf(one, wearer, atEar),
+        batteryLasts: batteryLasts(one.offer, wearer.wornMin),
+      };
+      found.push(judged);
+      places[index] = placeOf(one, judged) * count + index;
+    }
+    places.sort();
+    const ranked: RankedProtector[] = [];
     let before: number | null = null;
-    return Array.from(places, (key) => {
-      const index = key % prepared.length;
-      const place = (key - index) / prepared.length;
+    for (const key of places) {
+      const index = key % count;
+      const place = (key - index) / count;
       const decidedBy = before === null ? "first" : decidingComparison(before, place);
       before = place;
-      return shownAs(prepared[index]!, wearer, found[index]!, decidedBy);
-    });
+      ranked.push(shownAs(prepared[index]!, found[index]!, decidedBy));
+    }
+    return ranked;
   }
 
   /** The deciding noise of all; null where the rule's methods say nothing of one of them, or there is none. */
@@ -208,6 +237,14 @@ interface AtEar {
   readonly marginDb: number | null;
 }
 
+/** One offer as it stands for one worker. */
+interface Judged {
+  readonly atEar: AtEar | null;
+  readonly fit: OwnFit | null;
+  readonly excludedBy: RankedProtector["excludedBy"];
+  readonly batteryLasts: boolean | null;
+}
+
 const fitOf = ({ offer }: Prepared, { fits }: Wearer): OwnFit | null =>
   offer.outer === null ? (fits.get(offer.inner.modelId) ?? null) : null;
 
@@ -252,16 +289,15 @@ const COMPARISONS = [
 ] as const satisfies readonly (readonly [DecidedBy, number])[];
 
 /** The places in all comparisons as the digits of one number: less is better. */
-function placeOf(prepared: Prepared, wearer: Wearer, atEar: AtEar | null): number {
-  const { offer } = prepared;
-  const fit = fitOf(prepared, wearer);
-  const lasts = batteryLasts(offer, wearer.wornMin);
+function placeOf({ offer }: Prepared, { atEar, fit, excludedBy, batteryLasts }: Judged): number {
   const word = atEar?.word ?? null;
-  let place = exclusionOf(prepared, wearer, atEar) === null ? 0 : 1;
+  let place = excludedBy === null ? 0 : 1;
   place = 5 * place + (word === null ? ADEQUACY_UNKNOWN : ADEQUACY[word]);
   place = 1024 * place + marginStep(atEar?.marginDb ?? null, word);
   place = 3 * place + (fit === null || fit.hasPassed === null ? 1 : fit.hasPassed ? 0 : 2);
-  place = 3 * place + (offer.inner.active === null || lasts === true ? 0 : lasts === null ? 1 : 2);
+  place =
+    3 * place +
+    (offer.inner.active === null || batteryLasts === true ? 0 : batteryLasts === null ? 1 : 2);
   return 3 * place + (offer.stock === null ? 1 : offer.stock > 0 ? 0 : 2);
 }
 
@@ -288,24 +324,22 @@ function marginStep(marginDb: number | null, word: ProtectorWord | null): number
 const MIDDLE = 511;
 
 function shownAs(
-  prepared: Prepared,
-  wearer: Wearer,
-  atEar: AtEar | null,
+  { offer }: Prepared,
+  { atEar, fit, excludedBy, batteryLasts }: Judged,
   decidedBy: DecidedBy,
 ): RankedProtector {
-  const { offer } = prepared;
   return {
     modelId: offer.inner.modelId,
     outerModelId: offer.outer?.modelId ?? null,
     name: offer.name,
     kind: offer.inner.kind,
-    excludedBy: exclusionOf(prepared, wearer, atEar),
+    excludedBy,
     word: atEar?.word ?? null,
     wornDb: atEar?.wornDb ?? null,
     marginDb: atEar?.marginDb ?? null,
-    lastFit: fitOf(prepared, wearer),
+    lastFit: fit,
     batteryMin: offer.inner.active?.batteryMin ?? null,
-    batteryLasts: batteryLasts(offer, wearer.wornMin),
+    batteryLasts,
     stock: offer.stock,
     decidedBy,
   };
@@ -379,11 +413,10 @@ function factorsOf(attenuationDb: OctaveBandValues): Float64Array {
 
 function toNoise({ level, durationMin }: Wearer["noises"][number]): Noise {
   const { octaveBandsDb, levelDb, lcMinusLaDb: statedLcLaDb } = level;
-  const powers =
-    octaveBandsDb &&
-    Float64Array.from(octaveBandsDb, (bandDb, band) =>
-      bandDb === null ? Number.NaN : 10 ** ((bandDb + A_WEIGHTING_DB[band]!) / 10),
-    );
+  const powers = octaveBandsDb && new Float64Array(octaveBandsDb.length);
+  if (powers)
+    for (const [band, bandDb] of octaveBandsDb.entries())
+      powers[band] = bandDb === null ? Number.NaN : 10 ** ((bandDb + A_WEIGHTING_DB[band]!) / 10);
   return { levelDb, durationMin, powers, lcLaDb: lcMinusLaDb(level), statedLcLaDb };
 }
 

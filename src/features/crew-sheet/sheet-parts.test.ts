@@ -26,6 +26,7 @@ const figures = (facts: Partial<Figures> = {}): Figures => ({
   atEarAsWorkedDb: null,
   uncertaintyDb: 2.2,
   whileWornDb: 78,
+  whileWornBound: "exact",
   verdictOutside: "over",
   verdictAtEar: "under",
   word: "good",

@@ -400,7 +400,7 @@ test("a reading that governs says what the tasks give beside it, be it only a bo
   });
   // An energy mean of 92 bounds the 5 dB average from above.
   expect(row(1)).toHaveTextContent("250 %tasks ≤92.0");
-  expect(row(2)).toHaveTextContent("250 %does not govern");
+  expect(row(2)).toHaveTextContent("250 %only evidence");
   // 250 % is a TWA of 90 + 16.61·lg 2.5 = 96.6 under threshold 80; each figure has one line, what it is the head.
   const lines = [...row(1).querySelectorAll(".outside-line")].map(({ textContent }) => textContent);
   expect(lines[0]).toBe("96.6Over 85");

@@ -181,6 +181,7 @@ export function DayGrid({
       return;
     }
     setAnchor(null);
+    setLeaves(false);
     setEdit({
       text: text ?? editText(row.cells[cell], locale, words),
       before: row,

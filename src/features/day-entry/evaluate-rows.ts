@@ -112,7 +112,7 @@ export interface RowEvaluation {
 export type EvaluateRow = (row: RowDraft) => RowEvaluation;
 
 /** A reading this far from what the tasks give is asked about, dB. As the issue of this screen has it. */
-const FAR_OFF_DB = 6;
+export const FAR_OFF_DB = 6;
 /** A stay is far beyond the usual by both: a third more than the longest of a year, and half an hour. */
 const FAR_BEYOND_SHARE = 4 / 3;
 const FAR_BEYOND_MIN = 30;
@@ -483,9 +483,11 @@ function readingsOf(
       instrumentClass,
       instrumentId: _,
       runRevision: __,
+      countedMin,
       ...facts
     }): ReadingInput => ({
       ...facts,
+      durationMin: countedMin ?? facts.durationMin,
       id: readingId,
       runId,
       instrument: instrumentClass,
@@ -577,7 +579,7 @@ export function withoutProtector(
   found: RowEvaluation,
   view: DayGridView,
   minutes: number,
-): { taskName: string; atEarDb: number } | null {
+): { taskName: string; atEarDb: number; atEarBound: LevelBound } | null {
   const { input, evaluation } = found;
   if (!input || !evaluation) return null;
   const worn = evaluation.tasks.filter(({ isWorn, wornPct }) => isWorn && wornPct !== null);
@@ -595,6 +597,6 @@ export function withoutProtector(
       tasks: shift.tasks.map((one) => (one.id === task.id ? { ...one, wornPct } : one)),
     })),
   };
-  const { atEarDb } = evaluateDay(changed, governing, []);
-  return atEarDb === null ? null : { taskName: task.name, atEarDb };
+  const { atEarDb, atEarBound } = evaluateDay(changed, governing, []);
+  return atEarDb === null ? null : { taskName: task.name, atEarDb, atEarBound };
 }

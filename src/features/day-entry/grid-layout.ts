@@ -26,7 +26,9 @@ const WIDE_PX: Widths = {
 };
 /** Under a rule of doses: a figure and its verdict beside one another, and at the ear neither verdict nor uncertainty. */
 const DOSE_PX: Pick<Widths, "ear" | "outside" | "word"> = { ear: 96, outside: 138, word: 132 };
-/** The deciding task and its level have one line: what of the room to spare goes there before the protectors' names. */
+/** "Teardown: Sedge band" in one line: room to spare goes there first. */
+const PROTECTOR_WISH_PX = 152;
+/** The deciding task and its level have one line: half of what is left then goes there, up to this. */
 const MOST_WORD_PX = 156;
 const NARROW_PX: Widths = {
   who: 138,
@@ -116,9 +118,10 @@ export function gridLayout(
     else broken.add(id);
     tasksPx.set(id, isWhole ? wishPx : px);
   }
+  const leftPx = Math.max(0, sparePx - Math.max(0, PROTECTOR_WISH_PX - neededPx.protector));
   const word =
     isWide && hasRoom
-      ? Math.min(MOST_WORD_PX, neededPx.word + Math.floor(sparePx / 2))
+      ? Math.min(MOST_WORD_PX, neededPx.word + Math.floor(leftPx / 2))
       : neededPx.word;
   const fixedPx = { ...neededPx, word };
   const minWidthPx = [...tasksPx.values()].reduce((sum, px) => sum + px, sumOf(fixedPx));

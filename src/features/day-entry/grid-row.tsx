@@ -9,10 +9,10 @@ import type { DayFigures } from "../../../shared/schemas/finding";
 import type { GridRow as GridRowView } from "../../../shared/schemas/shift";
 import {
   AtEarFigure,
+  gravestOutside,
   isBoundReason,
   OutsideFigure,
   OutsideLines,
-  outsideVerdict,
   outsideWords,
 } from "../../components/day-figures";
 import { DropStrip, type DropStripProps, StripGround } from "../../components/drop-strip";
@@ -24,7 +24,14 @@ import { type StripFrame, stripOfDay } from "../../components/strip-of-day";
 import { Verdict } from "../../components/verdict";
 import { useLocale } from "../../lib/i18n";
 import type { BesideReading } from "./beside-reading";
-import { type Cell, editText, numberIn, readingIn, unaccountedIn } from "./cells";
+import {
+  type Cell,
+  editText,
+  numberIn,
+  type ReadingValue,
+  readingIn,
+  unaccountedIn,
+} from "./cells";
 import type { CellId, GridColumn } from "./columns";
 import { enteredReadings } from "./draft";
 import type { RowEvaluation, RowProblem, RowQuestion } from "./evaluate-rows";
@@ -319,11 +326,16 @@ function ReadingContent({
         {value?.kind === "dose" && `${editNumber(value.dosePct, locale)} %`}
       </span>
       {found.evaluation && (
-        <span className="under">{besideWords(i18n, locale, found.besideReading, isWide)}</span>
+        <span className="under">
+          {besideWords(i18n, locale, found.besideReading, isWide, value)}
+        </span>
       )}
     </span>
   );
 }
+
+/** Levels nearer than this show the same figure, dB. */
+const SAME_DB = 0.05;
 
 /** What the tasks give beside a reading that governs, or that it does not. */
 function besideWords(
@@ -331,15 +343,21 @@ function besideWords(
   locale: Locale,
   beside: BesideReading | null,
   isWide: boolean,
+  typed: ReadingValue | null,
 ): string | null {
-  if (!beside) return i18n.t("does not govern");
-  const { tasksDb, tasksBound, gapDb } = beside;
+  if (!beside) return isWide ? i18n.t("only evidence") : i18n.t("evidence");
+  const { readingDb, tasksDb, tasksBound, gapDb } = beside;
   if (tasksDb === null) return null;
   const level = formatLevel(tasksDb, locale, tasksBound);
   if (tasksBound !== "exact" || gapDb === null) return i18n.t("tasks {level}", { level });
-  return isWide
-    ? i18n.t("tasks {level}, {gap}", { level, gap: formatLevelChange(gapDb, locale) })
-    : i18n.t("tasks {gap}", { gap: formatLevelChange(-gapDb, locale) });
+  const gap = formatLevelChange(gapDb, locale);
+  if (!isWide) return i18n.t("tasks {gap}", { gap: formatLevelChange(-gapDb, locale) });
+  // The gap is between levels over eight hours: where the reading’s is another than was typed, both are named.
+  return typed?.kind === "level" &&
+    readingDb !== null &&
+    Math.abs(readingDb - typed.levelDb) >= SAME_DB
+    ? i18n.t("8 h: {reading}, tasks {level}", { reading: formatLevel(readingDb, locale), level })
+    : i18n.t("tasks {level}, {gap}", { level, gap });
 }
 
 function ProtectorContent({ found }: { found: RowEvaluation }) {
@@ -399,7 +417,7 @@ function WornContent({ found, cell, isFilled = false, locale }: ContentProps) {
 /** A row's day in the shape in which a stored one is shown; null where nothing is worked out. */
 export function previewFigures(found: RowEvaluation, frame: GridFrame): DayFigures | null {
   if (!found.summary) return null;
-  const { decidingTaskId: _, dosePct: __, ...figures } = found.summary;
+  const { decidingTaskId: _, dosePct: __, doseBound: ___, ...figures } = found.summary;
   const uncertaintyDb = frame.showsUncertainty ? figures.uncertaintyDb : null;
   return { ...figures, uncertaintyDb, resultId: "", origin: "computed" };
 }
@@ -501,7 +519,7 @@ function NarrowVerdict({ figures, frame }: { figures: DayFigures | null; frame: 
   const locale = useLocale();
   if (!figures) return <Verdict verdict="not-assessed" />;
   if (frame.strip.hasLimitAtEar) return <Verdict verdict={figures.verdictAtEar} />;
-  const { verdict, words } = outsideVerdict(i18n, locale, figures);
+  const { verdict, words } = gravestOutside(i18n, locale, figures);
   return (
     <Verdict verdict={verdict} isQuiet>
       {words}
@@ -533,7 +551,7 @@ function Word({ found, frame }: GridRowProps) {
           <span className="deciding" title={summary.decidingTaskName}>
             <span className="clip">{summary.decidingTaskName}</span>{" "}
             <span className="mono">
-              {formatLevel(summary.whileWornDb, locale, summary.atEarBound)}
+              {formatLevel(summary.whileWornDb, locale, summary.whileWornBound)}
             </span>
           </span>
         ) : undefined

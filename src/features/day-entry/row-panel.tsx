@@ -1,14 +1,14 @@
 import { useLingui } from "@lingui/react";
 import { useMemo } from "react";
 import { asReason, reasonText } from "../../../shared/findings/reasons";
-import { formatDose } from "../../../shared/format/dose";
+import { formatBoundedDose } from "../../../shared/format/dose";
 import { formatLevel, formatUncertainty } from "../../../shared/format/level";
 import type { GridRow } from "../../../shared/schemas/shift";
 import { outsideWords } from "../../components/day-figures";
 import { ShareBar } from "../../components/share-bar";
 import { useLocale } from "../../lib/i18n";
 import type { RowEvaluation } from "./evaluate-rows";
-import { withoutProtector } from "./evaluate-rows";
+import { FAR_OFF_DB, withoutProtector } from "./evaluate-rows";
 import { type GridFrame, previewFigures } from "./grid-row";
 import { RowForm } from "./row-form";
 import type { DayEntryState } from "./use-day-entry";
@@ -82,7 +82,6 @@ export function WorkedOut({
   const locale = useLocale();
   const { summary, evaluation, input } = found;
   const bare = useMemo(() => withoutProtector(found, entry.view, BARE_MIN), [found, entry.view]);
-  const level = (levelDb: number | null) => formatLevel(levelDb, locale);
   if (!summary || !evaluation || !input) {
     return (
       <p className="row-words">
@@ -100,6 +99,8 @@ export function WorkedOut({
     .map(([id, sharePct]) => ({ label: names.get(id) ?? "", sharePct }))
     .sort((a, b) => b.sharePct - a.sharePct);
   const isWorn = summary.hasProtector === "yes";
+  const isFarOff =
+    isWorn && summary.word !== null && Math.abs(found.besideReading?.gapDb ?? 0) >= FAR_OFF_DB;
   const reason = asReason(summary.reason);
   return (
     <>
@@ -127,17 +128,18 @@ export function WorkedOut({
             {i18n.t("Ten minutes without the protector in {task} would make it", {
               task: bare.taskName,
             })}{" "}
-            <b className="mono">{level(bare.atEarDb)}</b>
+            <b className="mono">{formatLevel(bare.atEarDb, locale, bare.atEarBound)}</b>
             {". "}
           </>
         )}
         {summary.dosePct !== null && (
           <>
             {i18n.t("Dose without protection")}{" "}
-            <b className="mono">{formatDose(summary.dosePct, locale)}</b>
+            <b className="mono">{formatBoundedDose(summary.dosePct, summary.doseBound, locale)}</b>
             {". "}
           </>
         )}
+        {isFarOff && i18n.t("The protector’s word rests on the tasks, not on the reading. ")}
         {reason !== null && i18n.t("Open because {reason}.", { reason: reasonText(i18n, reason) })}
       </p>
     </>

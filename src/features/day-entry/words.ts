@@ -236,7 +236,7 @@ export function questionWords(i18n: I18n, question: RowQuestion, locale: Locale)
   const { readingDb, tasksDb, tasksBound, gapDb } = question;
   const tasks = formatLevel(tasksDb, locale, tasksBound);
   return {
-    title: i18n.t("Reading {level}?", { level: formatLevel(readingDb, locale) }),
+    title: i18n.t("Reading {level} over 8 h?", { level: formatLevel(readingDb, locale) }),
     mend:
       tasksBound === "exact"
         ? i18n.t("The tasks give {tasks}: {gap} dB.", {

@@ -7,17 +7,36 @@ import { Empty } from "../../components/empty";
 import { TextButton } from "../../components/link";
 import { ProtectorWord } from "../../components/protector-word";
 import { useLocale } from "../../lib/i18n";
-import { decidedWord, exclusionWord, passWord } from "./fit-words";
+import { passWord } from "../../lib/register-words";
+import { decidedWord, exclusionWord } from "./fit-words";
 
-/** The register in the order in which it suits this worker's noise, each with the comparison that decided. */
+/** A device, or two of them, among candidates. */
+export const candidateKey = ({
+  modelId,
+  outerModelId,
+}: Pick<Candidate, "modelId" | "outerModelId">): string =>
+  outerModelId === null ? modelId : `${modelId} ${outerModelId}`;
+
+/** The register in the order in which it suits a noise, each with the comparison that decided. */
 export function CandidatesTable({
   candidates,
-  chosenId,
-  onTry,
+  caption,
+  inHead,
+  chosen,
+  pickLabel,
+  onPick,
+  hasOwnFit = true,
 }: {
   candidates: readonly Candidate[];
-  chosenId: string;
-  onTry: (modelId: string) => void;
+  caption: string;
+  /** Over those that are not out of the question. */
+  inHead: string;
+  /** `candidateKey` of the one that was picked. */
+  chosen: string;
+  /** What picking one does; absent: nothing is to be picked here. */
+  pickLabel?: (name: string) => string;
+  onPick: (candidate: Candidate) => void;
+  hasOwnFit?: boolean;
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
@@ -28,13 +47,17 @@ export function CandidatesTable({
       isRowHead: true,
       cell: (row) => (
         <span className="two-lines">
-          <TextButton
-            className="is-name"
-            aria-label={i18n.t("Try {protector}", { protector: row.name })}
-            onClick={() => onTry(row.modelId)}
-          >
-            {row.name}
-          </TextButton>
+          {pickLabel ? (
+            <TextButton
+              className="is-name"
+              aria-label={pickLabel(row.name)}
+              onClick={() => onPick(row)}
+            >
+              {row.name}
+            </TextButton>
+          ) : (
+            <span className="is-name">{row.name}</span>
+          )}
           <span className="beneath">
             {row.excludedBy
               ? exclusionWord(i18n, row.excludedBy)
@@ -95,16 +118,16 @@ export function CandidatesTable({
   ];
   return (
     <DataTable<Candidate>
-      caption={i18n.t("Devices in the order in which they suit this noise")}
+      caption={caption}
       rows={candidates}
-      rowKey={({ modelId }) => modelId}
-      columns={columns}
+      rowKey={candidateKey}
+      columns={hasOwnFit ? columns : columns.filter(({ id }) => id !== "fit")}
       isTwoLine
-      isSelected={({ modelId }) => modelId === chosenId}
+      isSelected={(row) => candidateKey(row) === chosen}
       groupOf={({ excludedBy }) =>
         excludedBy
           ? { key: "out", label: i18n.t("Out of the question") }
-          : { key: "in", label: i18n.t("To be tried") }
+          : { key: "in", label: inHead }
       }
       empty={<Empty title={i18n.t("No protector is on the register yet.")} />}
     />

@@ -3,8 +3,8 @@ import { fitRating } from "../../../shared/acoustics/protection/fit-rating";
 import { formatLevel } from "../../../shared/format/level";
 import { Status } from "../../components/status";
 import { useLocale } from "../../lib/i18n";
+import { passWord } from "../../lib/register-words";
 import { FitScale } from "./fit-scale";
-import { passWord } from "./fit-words";
 
 /** What the trials typed so far come to, beside what the noise asks for. */
 export function FitRatingLine({

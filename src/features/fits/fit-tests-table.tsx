@@ -6,9 +6,10 @@ import type { FitTestView } from "../../../shared/schemas/fit";
 import { type DataColumn, DataTable, type DataTableProps } from "../../components/data-table";
 import { TextButton, TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
+import { passWord } from "../../lib/register-words";
 import { paths } from "../../paths";
 import { CorrectFit, StrikeFit } from "./fit-change";
-import { fitMethodWord, outcomeWord, passWord } from "./fit-words";
+import { fitMethodWord, outcomeWord } from "./fit-words";
 
 /** Fits by date: who, which device, what came off, and whether that was enough. */
 export function FitTestsTable({

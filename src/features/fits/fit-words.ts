@@ -3,10 +3,10 @@ import type {
   Candidate,
   FitMethod,
   FitTestView,
-  Gear,
   IssueView,
   RefusalInput,
 } from "../../../shared/schemas/fit";
+import { gearWord } from "../../lib/register-words";
 
 export function fitMethodWord(i18n: I18n, method: FitMethod): string {
   switch (method) {
@@ -17,12 +17,6 @@ export function fitMethodWord(i18n: I18n, method: FitMethod): string {
     case "two-microphones":
       return i18n.t("Two microphones");
   }
-}
-
-/** Passed, not passed, or nothing to pass. */
-export function passWord(i18n: I18n, hasPassed: boolean | null): string {
-  if (hasPassed === null) return i18n.t("Nothing to pass");
-  return hasPassed ? i18n.t("Fits") : i18n.t("Does not fit");
 }
 
 export function outcomeWord(i18n: I18n, { isVoid, outcome }: FitTestView): string {
@@ -67,17 +61,6 @@ export function labelWord(i18n: I18n, method: string | null): string {
       return i18n.t("SNR");
     default:
       return i18n.t("nothing comparable");
-  }
-}
-
-export function gearWord(i18n: I18n, gear: Gear): string {
-  switch (gear) {
-    case "helmet":
-      return i18n.t("helmet");
-    case "glasses":
-      return i18n.t("glasses");
-    case "respirator":
-      return i18n.t("respirator");
   }
 }
 

@@ -9,6 +9,7 @@ import {
   useRef,
   useState,
 } from "react";
+import { formatBoundedDose } from "../../../shared/format/dose";
 import { formatDuration } from "../../../shared/format/duration";
 import { formatLevel } from "../../../shared/format/level";
 import { formatNumber } from "../../../shared/format/number";
@@ -44,7 +45,7 @@ import {
   withMargin,
   zoomSpan,
 } from "./history-span";
-import { changeText, clockOf, criterionText, doseText, rangeText } from "./history-words";
+import { changeText, clockOf, criterionText, rangeText } from "./history-words";
 import { CHANNEL_SYMBOL } from "./import-words";
 
 /** Narrower than this nothing can be read off: the picture then scrolls in its own window, its names standing over it. */
@@ -243,7 +244,7 @@ export function HistoryPicture({
       const bucket = Math.floor((span.toS + 1e-6) / dose.bucketS) - 1;
       const sofar = dose.dosePct[Math.min(bucket, dose.dosePct.length - 1)] ?? 0;
       return {
-        text: `${doseText(sofar, dose.bound, locale)} ${criterionText(i18n, dose, locale)}`,
+        text: `${formatBoundedDose(sofar, dose.bound, locale)} ${criterionText(i18n, dose, locale)}`,
         isStrong: dose.isMain,
         look: dose.look,
       };
@@ -270,7 +271,7 @@ export function HistoryPicture({
     });
     const sofar = doses.slice(0, 1).map((dose) => {
       const at = dose.dosePct[Math.floor(atS / dose.bucketS) - 1] ?? 0;
-      return i18n.t("dose so far {dose}", { dose: doseText(at, dose.bound, locale) });
+      return i18n.t("dose so far {dose}", { dose: formatBoundedDose(at, dose.bound, locale) });
     });
     line.textContent = [clockText(clock, atS, true), ...parts, ...sofar].join(" · ");
   }

@@ -1,13 +1,13 @@
 import { useLingui } from "@lingui/react";
 import { memo } from "react";
-import { formatShare } from "../../../shared/format/dose";
+import { formatBoundedDose, formatShare } from "../../../shared/format/dose";
 import { formatNumber } from "../../../shared/format/number";
 import type { Envelope, HistoryAnalysis, HistoryChannel } from "../../../shared/schemas/history";
 import { useLocale } from "../../lib/i18n";
 import { doseAxisTopPct, doseLook, dosePlace, doseTicks } from "./dose-axis";
 import { clockTicks, type HistoryClock } from "./history-clock";
 import type { Drawn } from "./history-stretches";
-import { criterionText, doseText, stretchName } from "./history-words";
+import { criterionText, stretchName } from "./history-words";
 import { CHANNEL_SYMBOL } from "./import-words";
 
 const WIDTH = 680;
@@ -108,7 +108,7 @@ export const HistoryPrint = memo(function HistoryPrint({
     .map((dose, place) => ({ dose, place, at: doseY(dose.dosePct.at(-1) ?? 0) }))
     .toSorted((a, b) => a.at - b.at)
     .map(({ dose, place, at }) => {
-      const text = `${doseText(dose.dosePct.at(-1) ?? null, dose.bound, locale)} ${criterionText(i18n, dose, locale)}`;
+      const text = `${formatBoundedDose(dose.dosePct.at(-1) ?? null, dose.bound, locale)} ${criterionText(i18n, dose, locale)}`;
       const lines = inLines(text, NAME_LETTERS - 5);
       const top = Math.max(at + 3, freeY);
       freeY = top + LINE * lines.length;

@@ -1,6 +1,6 @@
 import { useLingui } from "@lingui/react";
 import { type ReactNode, useEffect, useRef, useState } from "react";
-import { formatDose, formatShare } from "../../../shared/format/dose";
+import { formatBoundedDose, formatDose, formatShare } from "../../../shared/format/dose";
 import { formatMinutes } from "../../../shared/format/duration";
 import { formatLevel, formatLevelChange } from "../../../shared/format/level";
 import { formatNumber, MINUS } from "../../../shared/format/number";
@@ -9,7 +9,7 @@ import { type DataColumn, DataTable } from "../../components/data-table";
 import { Empty } from "../../components/empty";
 import { useLocale } from "../../lib/i18n";
 import type { HistoryClock } from "./history-clock";
-import { boundWord, criterionText, doseText, lengthText, rangeText } from "./history-words";
+import { boundWord, criterionText, lengthText, rangeText } from "./history-words";
 
 interface TaskRow {
   readonly key: string;
@@ -148,8 +148,8 @@ export function CompareTable({ analysis }: { analysis: HistoryAnalysis }) {
       id: `dose ${index}`,
       name: i18n.t("Dose, {criterion}", { criterion: criterionText(i18n, reading, locale) }),
       note: reading.bound === "exact" ? undefined : boundWord(i18n, reading.bound),
-      counted: doseText(reading.dosePct, reading.bound, locale),
-      everything: other ? doseText(other.dosePct, other.bound, locale) : "–",
+      counted: formatBoundedDose(reading.dosePct, reading.bound, locale),
+      everything: other ? formatBoundedDose(other.dosePct, other.bound, locale) : "–",
       difference: change === null ? "–" : `${change > 0 ? "+" : ""}${formatDose(change, locale)}`,
     };
   });
@@ -371,7 +371,7 @@ export function QuartersTable({
         head: criterionText(i18n, dose, locale),
         unit: i18n.t("dose so far"),
         kind: "figure",
-        cell: ({ dosePct }) => doseText(dosePct[place] ?? null, dose.bound, locale),
+        cell: ({ dosePct }) => formatBoundedDose(dosePct[place] ?? null, dose.bound, locale),
       }),
     ),
   ];

@@ -1,6 +1,5 @@
 import type { I18n } from "@lingui/core";
 import type { MeterSettings } from "../../../shared/acoustics/types";
-import { formatDose } from "../../../shared/format/dose";
 import { formatDuration } from "../../../shared/format/duration";
 import { formatLimit } from "../../../shared/format/level";
 import { formatNumber } from "../../../shared/format/number";
@@ -10,7 +9,6 @@ import { type ClockChange, clockText, type HistoryClock } from "./history-clock"
 import type { Drawn } from "./history-stretches";
 
 export type Bound = "exact" | "upper" | "lower";
-const BOUND_MARK: Record<Bound, string> = { exact: "", upper: "≤\u2009", lower: "≥\u2009" };
 
 export const clockOf = ({
   startsAt,
@@ -22,10 +20,6 @@ export const clockOf = ({
   lengthS: (intervalMs * valuesCount) / 1000,
   timeZone,
 });
-
-/** A dose, with its mark where it is only a bound. */
-export const doseText = (dosePct: number | null, bound: Bound, locale: Locale): string =>
-  `${dosePct === null ? "" : BOUND_MARK[bound]}${formatDose(dosePct, locale)}`;
 
 interface Served {
   /** Criteria that a setting serves, keys of the catalogue; empty for an instrument's own setting. */

@@ -14,14 +14,15 @@ import type { OwnDay } from "./queries";
 /** The last shift in one sentence; what stands out is between asterisks. */
 export function lastShiftSentence(i18n: I18n, locale: Locale, day: OwnDay): string {
   const { atEarDb, outsideDb, uncertaintyDb, limit } = day;
+  const atEar = formatWholeLevel(atEarDb, locale, limit?.levelDb);
   const values = {
     day: formatDay(day.date, locale),
     level:
       day.atEarBound === "lower"
-        ? i18n.t("at least {level}", { level: formatWholeLevel(atEarDb, locale) })
+        ? i18n.t("at least {level}", { level: atEar })
         : day.atEarBound === "upper"
-          ? i18n.t("at most {level}", { level: formatWholeLevel(atEarDb, locale) })
-          : formatWholeLevel(atEarDb, locale),
+          ? i18n.t("at most {level}", { level: atEar })
+          : atEar,
     around:
       day.outsideBound === "lower"
         ? i18n.t("at least {level}", { level: formatWholeLevel(outsideDb, locale) })

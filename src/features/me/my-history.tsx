@@ -4,9 +4,10 @@ import { formatMonth, formatShortDate } from "../../../shared/format/date";
 import { formatWholeLevel } from "../../../shared/format/level";
 import { Empty } from "../../components/empty";
 import { HistoryChart, type HistoryMark } from "../../components/history-chart";
-import { TextButton } from "../../components/link";
+import { TextButton, TextLink } from "../../components/link";
 import { Verdict } from "../../components/verdict";
 import { useLocale } from "../../lib/i18n";
+import { paths } from "../../paths";
 import type { OwnProtector } from "./own-protectors";
 import type { OwnDay } from "./queries";
 import { weeksOf } from "./weeks";
@@ -106,10 +107,14 @@ export function MyHistory({
             <tbody>
               {days.slice(0, rowCount).map((day) => (
                 <tr key={day.date}>
-                  <th scope="row">{formatShortDate(day.date, locale)}</th>
+                  <th scope="row">
+                    <TextLink to={paths.myDay(day.date)}>
+                      {formatShortDate(day.date, locale)}
+                    </TextLink>
+                  </th>
                   <td className="is-figure">
                     {day.atEarDb !== null && BOUND_SIGNS[day.atEarBound]}
-                    {formatWholeLevel(day.atEarDb, locale)}
+                    {formatWholeLevel(day.atEarDb, locale, limitDb)}
                   </td>
                   <td className="is-figure">
                     {day.outsideDb !== null && BOUND_SIGNS[day.outsideBound]}

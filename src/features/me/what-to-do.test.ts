@@ -21,6 +21,7 @@ const day = (facts: Partial<OwnDay> = {}): OwnDay => ({
   atEarAsWorkedDb: null,
   uncertaintyDb: 2.1,
   whileWornDb: 80,
+  whileWornBound: "exact",
   verdictOutside: "over",
   verdictAtEar: "under",
   word: "good",

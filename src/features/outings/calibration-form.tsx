@@ -3,6 +3,7 @@ import { useState } from "react";
 import { z } from "zod";
 import { CalibrationInput, type FileView } from "../../../shared/schemas/outing";
 import { Button } from "../../components/button";
+import { FileInput } from "../../components/file-input";
 import {
   DateField,
   Form,
@@ -16,7 +17,6 @@ import {
 } from "../../components/form";
 import { FormProblem } from "../../components/form-problem";
 import { useChangeKey } from "../../lib/change-key";
-import { FileInput } from "./file-input";
 import { useRecordCalibration } from "./queries";
 
 /** The outcome is a choice of two words and no box that is forgotten. */

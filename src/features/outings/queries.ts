@@ -2,7 +2,6 @@ import { queryOptions, useMutation, useQueryClient } from "@tanstack/react-query
 import {
   CalibrationHistory,
   type CalibrationInput,
-  FileView,
   OutingBoard,
   type OutingReturn,
   type OutingStart,
@@ -118,12 +117,6 @@ export function useRecordSample() {
       api.post("/samples", { body, schema: RunView, idempotencyKey: key }),
     onSuccess: moved,
   });
-}
-
-export async function attachFile(file: File): Promise<FileView> {
-  const body = new FormData();
-  body.set("file", file);
-  return api.post("/files", { body, schema: FileView });
 }
 
 export function useRecordCalibration(instrumentId: string) {

@@ -1,10 +1,19 @@
 import { useLingui } from "@lingui/react";
 import type { UseFormReturn } from "react-hook-form";
 import type { z } from "zod";
+import { US_LABEL_HZ } from "../../../shared/acoustics/types";
 import type { NewProtectorInput } from "../../../shared/schemas/protector";
 import { BandFields } from "../../components/band-fields";
 import { DateField, Field, NumberField, TextAreaField } from "../../components/form";
-import { NumberInput } from "../../components/number-input";
+import { Disclosure } from "./disclosure";
+import { mayBeActive } from "./kinds";
+import { LabelFields } from "./label-fields";
+import { labelRatings } from "./label-ratings";
+import { RatingsTable } from "./ratings-table";
+import { SubjectsField } from "./subjects-field";
+import { typedFacts } from "./typed-facts";
+import { UseFields } from "./use-fields";
+import "../../styles/protectors.css";
 
 export type ProtectorForm = UseFormReturn<
   z.input<typeof NewProtectorInput>,
@@ -22,81 +31,25 @@ const NO_ACTIVE = {
   batteryMin: null,
 };
 
-/** The single numbers of the label, side by side as a label has them. */
-function LabelledNumbers({ form }: { form: ProtectorForm }) {
+/** Label and test data as they are typed, one beside the other. */
+function LiveRatings({ form }: { form: ProtectorForm }) {
   const { i18n } = useLingui();
-  const numbers = [
-    { key: "usRatingDb", label: i18n.t("US number") },
-    { key: "snrDb", label: i18n.t("SNR") },
-    { key: "hDb", label: i18n.t("H") },
-    { key: "mDb", label: i18n.t("M") },
-    { key: "lDb", label: i18n.t("L") },
-    { key: "slc80Db", label: i18n.t("SLC80") },
-  ] as const;
-  const messageOf = (key: (typeof numbers)[number]["key"]) =>
-    form.formState.errors.data?.[key]?.message;
-  const messages = numbers.flatMap(({ key, label }) => {
-    const message = messageOf(key);
-    return message ? [`${label}: ${message}`] : [];
-  });
+  const ratings = labelRatings(typedFacts(form.watch("data")));
+  if (ratings.every(({ recomputedDb }) => recomputedDb === null)) return null;
   return (
-    <Field
-      label={i18n.t("On the label, dB")}
-      isGroup
-      isOptional
-      error={messages.length > 0 ? messages.join(" ") : undefined}
-    >
-      {(wires) => (
-        <div className="band-cells is-label">
-          {numbers.map(({ key, label }) => (
-            <div key={key}>
-              <span aria-hidden="true">{label}</span>
-              <NumberInput
-                className="input band-input"
-                aria-label={`${label}, dB`}
-                aria-describedby={wires["aria-describedby"]}
-                aria-invalid={messageOf(key) ? true : undefined}
-                value={form.watch(`data.${key}`)}
-                onValue={(value) =>
-                  form.setValue(`data.${key}`, value as number | null, {
-                    shouldDirty: true,
-                    shouldValidate: form.formState.isSubmitted,
-                  })
-                }
-              />
-            </div>
-          ))}
-        </div>
-      )}
-    </Field>
+    <section className="live-ratings" aria-label={i18n.t("The label beside its test data")}>
+      <RatingsTable ratings={ratings} auClass={form.watch("data.auClass") ?? null} />
+    </section>
   );
 }
 
-/** What certificate and test reports say of a model, from a date on. */
-export function ProtectorDataFields({
-  form,
-  needsReason,
-}: {
-  form: ProtectorForm;
-  needsReason: boolean;
-}) {
+/** The electronic part: from its test report, or from delay and gain. */
+function ActiveFields({ form }: { form: ProtectorForm }) {
   const { i18n } = useLingui();
-  const active = form.watch("data.active");
+  const [kind, active] = form.watch(["kind", "data.active"]);
+  if (!mayBeActive(kind) && !active) return null;
   return (
     <>
-      <LabelledNumbers form={form} />
-      <BandFields
-        form={form}
-        name="data.bands"
-        label={i18n.t("By octave band, dB")}
-        rows={[
-          { key: "meanDb", label: i18n.t("Mean attenuation") },
-          { key: "sdDb", label: i18n.t("Standard deviation") },
-        ]}
-        note={i18n.t(
-          "63 Hz may stay empty, the others not. Eight values can be pasted into any cell.",
-        )}
-      />
       <Field label={i18n.t("Active part")} error={undefined} isGroup>
         {() => (
           <label className="choice">
@@ -169,6 +122,98 @@ export function ProtectorDataFields({
           />
         </>
       )}
+    </>
+  );
+}
+
+/** Takes whoever sent the form to the first thing that is wrong with it. */
+export function focusFirstFault(formName: string): void {
+  // Folded parts open as the form is drawn anew.
+  requestAnimationFrame(() =>
+    document
+      .querySelector<HTMLElement>(`form[aria-label="${formName}"] [aria-invalid="true"]`)
+      ?.focus(),
+  );
+}
+
+/** What certificate and test reports say of a model, from a date on. */
+export function ProtectorDataFields({
+  form,
+  needsReason,
+}: {
+  form: ProtectorForm;
+  needsReason: boolean;
+}) {
+  const { i18n } = useLingui();
+  const [usLabel, subjects, sizes, worksWith, cushions, tips] = form.watch([
+    "data.usLabel",
+    "data.subjectsDb",
+    "data.sizes",
+    "data.worksWith",
+    "data.cushionsEveryDays",
+    "data.tipsEveryDays",
+  ]);
+  const faults = form.formState.errors.data;
+  const usesStated =
+    (sizes?.length ?? 0) > 0 ||
+    Object.values(worksWith ?? {}).some((value) => value !== null) ||
+    cushions != null ||
+    tips != null;
+  return (
+    <>
+      <LabelFields form={form} />
+      <BandFields
+        form={form}
+        name="data.bands"
+        label={i18n.t("By octave band, dB")}
+        rows={[
+          { key: "meanDb", label: i18n.t("Mean attenuation") },
+          { key: "sdDb", label: i18n.t("Standard deviation") },
+        ]}
+        note={i18n.t(
+          "63 Hz may stay empty, the others not. Eight values can be pasted into any cell.",
+        )}
+      />
+      <Disclosure
+        title={i18n.t("US test data by third-octave")}
+        stated={usLabel ? i18n.t("stated") : null}
+        hasFault={faults?.usLabel !== undefined}
+      >
+        <BandFields
+          form={form}
+          name="data.usLabel"
+          bandsHz={US_LABEL_HZ}
+          label={i18n.t("At the label’s frequencies, dB")}
+          rows={[
+            { key: "meanDb", label: i18n.t("Mean attenuation") },
+            { key: "sdDb", label: i18n.t("Standard deviation") },
+          ]}
+          note={i18n.t(
+            "All nine, with 3150 and 6300 Hz: without these two the US number can’t be recomputed.",
+          )}
+        />
+      </Disclosure>
+      <Disclosure
+        title={i18n.t("Single test subjects")}
+        stated={subjects ? i18n.t("stated") : null}
+        hasFault={faults?.subjectsDb !== undefined}
+      >
+        <SubjectsField form={form} />
+      </Disclosure>
+      <LiveRatings form={form} />
+      <ActiveFields form={form} />
+      <Disclosure
+        title={i18n.t("Sizes, what it goes with, replacement")}
+        stated={usesStated ? i18n.t("stated") : null}
+        hasFault={[
+          faults?.sizes,
+          faults?.worksWith,
+          faults?.cushionsEveryDays,
+          faults?.tipsEveryDays,
+        ].some((fault) => fault !== undefined)}
+      >
+        <UseFields form={form} />
+      </Disclosure>
       <DateField
         form={form}
         name="data.effectiveFrom"

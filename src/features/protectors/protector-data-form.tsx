@@ -11,7 +11,7 @@ import { Form, showIssuesOn, useSchemaForm } from "../../components/form";
 import { LookActions, ReviewedChange, useReviewedChange } from "../../components/reviewed-change";
 import { ApiError } from "../../lib/api";
 import { useLocale } from "../../lib/i18n";
-import { ProtectorDataFields } from "./data-fields";
+import { focusFirstFault, ProtectorDataFields } from "./data-fields";
 import { protectorQueries } from "./queries";
 
 type Detail = z.infer<typeof ProtectorDetail>;
@@ -64,20 +64,23 @@ export function ProtectorDataForm({
       onSaved();
     },
   });
-  const look = form.handleSubmit(({ data: body }) => {
-    if (body.reason === null) {
-      form.setError(
-        "data.reason",
-        {
-          type: "reason-needed",
-          message: i18n.t("A reason is needed: what is there already changes."),
-        },
-        { shouldFocus: true },
-      );
-      return;
-    }
-    change.look(body);
-  });
+  const look = form.handleSubmit(
+    ({ data: body }) => {
+      if (body.reason === null) {
+        form.setError(
+          "data.reason",
+          {
+            type: "reason-needed",
+            message: i18n.t("A reason is needed: what is there already changes."),
+          },
+          { shouldFocus: true },
+        );
+        return;
+      }
+      change.look(body);
+    },
+    () => focusFirstFault(i18n.t("New data")),
+  );
   return (
     <ReviewedChange
       change={change}

@@ -1,6 +1,6 @@
 import { useLingui } from "@lingui/react";
 import { type ReactNode, useMemo } from "react";
-import type { DayEvaluation, DayInput } from "../../../shared/acoustics/types";
+import type { DayEvaluation, DayInput, TimedTask } from "../../../shared/acoustics/types";
 import { buildWorking, type WorkingRecord } from "../../../shared/acoustics/working";
 import { ruleSetVersion } from "../../../shared/rule-sets";
 import type { ResultView } from "../../../shared/schemas/result";
@@ -9,6 +9,7 @@ import { TextButton, TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
 import { paths } from "../../paths";
 import { ResultFacts } from "./result-facts";
+import { WearingCost } from "./wearing-cost";
 import { workingCsv } from "./working-csv";
 import { WorkingLines, WorkingStepView } from "./working-view";
 
@@ -19,24 +20,27 @@ export function WorkingOf({
   evaluation,
   workingName,
   strip,
+  seesMethods,
 }: {
   result: ResultView;
   input: DayInput;
   evaluation: DayEvaluation;
   workingName: string;
   strip: ReactNode;
+  /** The reader may open the protector's page, where every method stands beside the others. */
+  seesMethods: boolean;
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
+  const governing = ruleSetVersion(result.governing.key, result.governing.version);
   const working = useMemo(() => {
-    const governing = ruleSetVersion(result.governing.key, result.governing.version);
     if (!governing) return null;
     const comparison = result.comparison.flatMap(
       ({ key, version }) => ruleSetVersion(key, version) ?? [],
     );
     return buildWorking(input, governing, comparison, evaluation);
-  }, [result, input, evaluation]);
-  if (!working)
+  }, [result, input, evaluation, governing]);
+  if (!working || !governing)
     return (
       <Failed>
         {i18n.t(
@@ -63,6 +67,7 @@ export function WorkingOf({
         <div>
           <WorkingLines working={working} />
           {strip}
+          <WearingCost input={input} governing={governing} />
         </div>
         <ResultFacts
           result={result}
@@ -72,7 +77,7 @@ export function WorkingOf({
       </div>
       {working.steps.map((step) => (
         <WorkingStepView key={step.number} step={step}>
-          <Records records={step.records} result={result} input={input} />
+          <Records records={step.records} result={result} input={input} seesMethods={seesMethods} />
         </WorkingStepView>
       ))}
     </>
@@ -84,10 +89,12 @@ function Records({
   records,
   result,
   input,
+  seesMethods,
 }: {
   records: readonly WorkingRecord[];
   result: ResultView;
   input: DayInput;
+  seesMethods: boolean;
 }) {
   const { i18n } = useLingui();
   const of = (kind: WorkingRecord["kind"]) => records.filter((record) => record.kind === kind);
@@ -135,6 +142,12 @@ function Records({
           {i18n.t("Protector’s data:")} <SourceLinks sources={protectors} />
         </p>
       )}
+      {seesMethods && protectors.length > 0 && (
+        <p>
+          {i18n.t("Method by method, as it is today:")}{" "}
+          <SourceLinks sources={methodsOf(tasks, result.worker.id)} />
+        </p>
+      )}
       {of("run").map(({ id }) => (
         <p key={id}>
           {i18n.t("Reading:")} <TextLink to={paths.run(id)}>{i18n.t("its run")}</TextLink>.
@@ -142,6 +155,32 @@ function Records({
       ))}
     </>
   );
+}
+
+/** Each task in which something is assigned, as a link to what is worn there by every method. */
+function methodsOf(tasks: readonly TimedTask[], workerId: string) {
+  const byTask = new Map(
+    tasks.flatMap(({ taskId, name, protection }) =>
+      protection
+        ? [
+            [
+              taskId,
+              {
+                id: taskId,
+                label: name,
+                note: null,
+                to: paths.atEar(protection.inner.modelId, {
+                  taskId,
+                  outerId: protection.outer?.modelId,
+                  workerId,
+                }),
+              },
+            ] as const,
+          ]
+        : [],
+    ),
+  );
+  return [...byTask.values()];
 }
 
 /** Several records, and after them the note that they share. */

@@ -27,6 +27,7 @@ import { LookActions, ReviewedChange, useReviewedChange } from "../../components
 import { SpectrumField, useSpectrumCheck } from "../../components/spectrum-field";
 import { useLocale } from "../../lib/i18n";
 import { gradeWord, instrumentClassWord } from "../../lib/register-words";
+import { IMPULSE_TYPES, impulseTypeWord } from "./impulse-words";
 import { taskQueries } from "./queries";
 import { SamplesField, useSamplesCheck } from "./samples-field";
 
@@ -53,6 +54,7 @@ function startFrom(level: Level | null, effectiveFrom: string): Input {
       octaveBandsDb: null,
       lasMaxDb: null,
       peak: null,
+      impulseType: null,
       samplesDb: [],
       instrument: null,
       grade: "measured-group",
@@ -162,6 +164,41 @@ function PeakField({ form }: { form: TaskLevelForm }) {
             ))}
           </select>
         </>
+      )}
+    </Field>
+  );
+}
+
+function ImpulseField({ form }: { form: TaskLevelForm }) {
+  const { i18n } = useLingui();
+  const type = form.watch("impulseType");
+  return (
+    <Field
+      label={i18n.t("Kind of impulse")}
+      isOptional
+      note={i18n.t("Of bangs and blows, by EN 458. Without it a peak at the ear is not assessed.")}
+      error={messageAt(form, "impulseType")}
+    >
+      {({ readOnly: _, ...wires }) => (
+        <select
+          {...wires}
+          className="input"
+          value={type ?? ""}
+          onChange={(event) =>
+            form.setValue(
+              "impulseType",
+              IMPULSE_TYPES.find((one) => String(one) === event.target.value) ?? null,
+              { shouldDirty: true, shouldValidate: form.formState.isSubmitted },
+            )
+          }
+        >
+          <option value="">{i18n.t("Not stated")}</option>
+          {IMPULSE_TYPES.map((one) => (
+            <option key={one} value={one}>
+              {impulseTypeWord(i18n, one)}
+            </option>
+          ))}
+        </select>
       )}
     </Field>
   );
@@ -285,6 +322,7 @@ export function LevelForm({
           isOptional
         />
         <PeakField form={form} />
+        <ImpulseField form={form} />
         <SamplesField form={form} check={samples} />
         <SelectField
           form={form}

@@ -40,10 +40,12 @@ export function SamplesField({
       .map((value) => (value instanceof Unreadable ? value.text : editNumber(value, locale)))
       .join(" "),
   );
-  const errors: unknown = get(form.formState.errors, "samplesDb");
-  const firstFault = Array.isArray(errors)
-    ? (errors.find((error) => error?.message) as { message: string } | undefined)
-    : (errors as { message?: string } | undefined);
+  // Of the list as a whole, or by place.
+  const errors = (get(form.formState.errors, "samplesDb") ?? {}) as { message?: unknown };
+  const firstFault = [errors, ...Object.values(errors)].find(
+    (error): error is { message: string } =>
+      typeof (error as { message?: unknown } | null)?.message === "string",
+  );
   return (
     <Field
       label={i18n.t("Samples")}

@@ -3,7 +3,9 @@ import { useQueryClient } from "@tanstack/react-query";
 import type { z } from "zod";
 import { TaskDetail, TaskInput } from "../../../shared/schemas/task";
 import { CheckField, type Choice, SelectField, TextField } from "../../components/form";
+import { GearField } from "../../components/gear-field";
 import { RecordForm } from "../../components/record-form";
+import { gearWords } from "../../lib/register-words";
 import { taskQueries } from "./queries";
 
 type Detail = z.infer<typeof TaskDetail>;
@@ -39,14 +41,16 @@ export function TaskHeadForm({
               siteId: task.siteId,
               areaId: task.areaId,
               name: task.name,
+              requiredGear: task.requiredGear,
               isArchived: task.isArchived,
             }
-          : { siteId, areaId: null, name: "", isArchived: false }
+          : { siteId, areaId: null, name: "", requiredGear: [], isArchived: false }
       }
-      toBody={({ siteId: site, areaId, name, isArchived }) => ({
+      toBody={({ siteId: site, areaId, name, requiredGear, isArchived }) => ({
         siteId: site,
         areaId,
         name,
+        requiredGear,
         isArchived,
       })}
       fields={[
@@ -57,6 +61,11 @@ export function TaskHeadForm({
           show: (body) =>
             areasOf(body.siteId).find(({ value }) => value === body.areaId)?.label ??
             i18n.t("none"),
+        },
+        {
+          key: "requiredGear",
+          label: i18n.t("Asked for beside a protector"),
+          show: ({ requiredGear }) => gearWords(i18n, requiredGear) ?? i18n.t("none"),
         },
         {
           key: "isArchived",
@@ -85,6 +94,12 @@ export function TaskHeadForm({
             choices={areasOf(form.watch("siteId"))}
             emptyLabel={i18n.t("None")}
             isOptional
+          />
+          <GearField
+            form={form}
+            name="requiredGear"
+            label={i18n.t("Asked for beside a protector")}
+            note={i18n.t("Protectors that don’t go with it are not offered for this task.")}
           />
           {task && (
             <CheckField

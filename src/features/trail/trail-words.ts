@@ -100,6 +100,12 @@ export function actionWord(i18n: I18n, action: string): string {
       return i18n.t("Supervision ended");
     case "add-protector-revision":
       return i18n.t("Data changed");
+    case "attach-protector-file":
+      return i18n.t("Data sheet attached");
+    case "remove-protector-file":
+      return i18n.t("Data sheet taken off");
+    case "add-protector-combination":
+      return i18n.t("Data of two worn together entered");
     case "add-site-settings":
       return i18n.t("Rules changed");
     case "add-task-level":

@@ -8,7 +8,11 @@ import {
   IssueEnd,
   IssueInput,
 } from "../../../shared/schemas/fit";
-import { NewProtectorInput } from "../../../shared/schemas/protector";
+import {
+  CombinationInput,
+  NewProtectorInput,
+  ProtectorFileInput,
+} from "../../../shared/schemas/protector";
 import { InstrumentInput, RunCorrection, RunInput } from "../../../shared/schemas/run";
 import { ShiftCorrection } from "../../../shared/schemas/shift";
 import { AreaInput, NewSiteInput, SiteSettingsInput } from "../../../shared/schemas/site";
@@ -184,7 +188,16 @@ function membersOf(schema: unknown, found = new Set<string>()): Set<string> {
 test("every field of a form that the trail records has its word", () => {
   const forms = [
     ...[AreaInput, NewSiteInput, SiteSettingsInput, CrewInput, MembershipInput, SupervisorInput],
-    ...[NewProtectorInput, InstrumentInput, RunInput, RunCorrection, ShiftCorrection, JobInput],
+    ...[
+      NewProtectorInput,
+      CombinationInput,
+      ProtectorFileInput.omit({ fileId: true }),
+      InstrumentInput,
+      RunInput,
+      RunCorrection,
+      ShiftCorrection,
+      JobInput,
+    ],
     ...[NewTaskInput, UserInput, AssignmentInput, WorkerInput],
     ...[FitTestInput, FitTestChange, FitPolicyInput, IssueInput, IssueEnd],
     ...[WearingRoundInput, WarningSignalInput],

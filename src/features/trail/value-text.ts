@@ -11,6 +11,7 @@ import type { AuditEventView, NamedThing } from "../../../shared/schemas/audit-e
 import { FINDING_KINDS, FindingState } from "../../../shared/schemas/finding";
 import type { HistoryStretch } from "../../../shared/schemas/history";
 import {
+  gearWord,
   gradeWord,
   instrumentClassWord,
   instrumentKindWord,
@@ -155,6 +156,8 @@ const CODED: Readonly<Record<string, Coded>> = {
     ({ "in-person": i18n.t("in person"), "own-page": i18n.t("on the own page") })[code],
   source: ({ i18n }, code: string) =>
     ({ round: i18n.t("a round"), "own-report": i18n.t("own report") })[code],
+  wornGear: ({ i18n }, code) => gearWord(i18n, code),
+  requiredGear: ({ i18n }, code) => gearWord(i18n, code),
   workers: ({ i18n }, code: string) =>
     ({ number: i18n.t("employee number"), name: i18n.t("name") })[code],
 };

@@ -1,12 +1,17 @@
 import { useLingui } from "@lingui/react";
 import { useState } from "react";
-import { issueText } from "../../../shared/problems/issue-text";
-import type { FileView } from "../../../shared/schemas/outing";
-import { Field } from "../../components/form";
-import { TextButton } from "../../components/link";
-import { ApiError } from "../../lib/api";
-import { problemText } from "../../lib/problem-text";
-import { attachFile } from "./queries";
+import { issueText } from "../../shared/problems/issue-text";
+import { FileView } from "../../shared/schemas/outing";
+import { ApiError, api } from "../lib/api";
+import { problemText } from "../lib/problem-text";
+import { Field } from "./form";
+import { TextButton } from "./link";
+
+async function attachFile(file: File): Promise<FileView> {
+  const body = new FormData();
+  body.set("file", file);
+  return api.post("/files", { body, schema: FileView });
+}
 
 /** Files are sent as they are chosen; what they belong to names them when it is saved. */
 export function FileInput({

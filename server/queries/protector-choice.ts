@@ -1,0 +1,169 @@
+import {
+  ProtectorChoice,
+  type RankedProtector,
+  type WornGear,
+} from "../../shared/acoustics/protection/choose-protector";
+import type { TimedTask } from "../../shared/acoustics/types";
+import { ruleSetVersion } from "../../shared/rule-sets";
+import type { ProtectorChoiceView, Wearer } from "../../shared/schemas/choice";
+import { todayAt } from "../lib/calendar";
+import { row, rows } from "../lib/db";
+import { only } from "../lib/only";
+import { type Actor, visible } from "../lib/policy";
+import { workerPolicy } from "../policies";
+import { gridTasks } from "./day-grid";
+import { fitsOf, lawAtEar, noisesOf, offersAt, pairsOf, requiredGear } from "./register-offers";
+import { settingsInForce } from "./site-settings";
+
+/** Whose noise protectors are compared for. */
+export interface ChoiceSubject {
+  readonly kind: "task" | "job";
+  readonly id: string;
+  readonly name: string;
+  readonly siteId: string;
+}
+
+/** Of a task that is in no nominal day. */
+const ASSUMED_MIN = 480;
+/** Assigned in one go, as the route takes them. */
+const MOST_WEARERS = 200;
+const MOST_PAIRS = 30;
+
+/**
+ * The register in the order in which it suits a task or a job's nominal day, single and double, and who would wear it.
+ *
+ * @throws AppError not-computed, where the site has no rules today.
+ */
+export async function protectorChoice(
+  actor: Actor,
+  subject: ChoiceSubject,
+): Promise<ProtectorChoiceView> {
+  const { siteId } = subject;
+  const site = only(
+    await rows<{ name: string; timeZone: string }>(
+      `SELECT name, time_zone AS "timeZone" FROM sites WHERE id = :siteId`,
+      { siteId },
+    ),
+  );
+  const date = todayAt(site.timeZone);
+  const settings = await settingsInForce(siteId, date);
+  const governing = ruleSetVersion(settings.governingRuleSet, settings.ruleSetVersion);
+  if (!governing) throw new Error("a rule set in force has a version");
+  const { adequacy, targetDb } = governing.protection;
+
+  const minutes = await minutesOf(subject);
+  const tasks = (await gridTasks(siteId, date)).flatMap((task): TimedTask[] => {
+    const durationMin = minutes.get(task.id);
+    if (durationMin === undefined) return [];
+    const { id, name, level, zone } = task;
+    return [
+      {
+        id,
+        taskId: id,
+        name,
+        durationMin,
+        level,
+        zone,
+        protection: null,
+        wornPct: 100,
+        wornIsShiftWide: false,
+      },
+    ];
+  });
+  // A task by itself was chosen because of its noise, whatever its level.
+  const noises = noisesOf(tasks, adequacy, { site: settings, mustWear: subject.kind === "task" });
+  const gear = await requiredGear(noises.map(({ taskId }) => taskId));
+  const singles = await offersAt(actor, siteId, date);
+  const pairs = await pairsOf(singles, date);
+  const rank = (offers: typeof singles): RankedProtector[] =>
+    new ProtectorChoice(offers, governing.protection, lawAtEar(governing)).for({
+      noises,
+      personalTargetDb: null,
+      wornGear: gear,
+      wornMin: noises.reduce((sum, { durationMin }) => sum + durationMin, 0),
+      fits: new Map(),
+    });
+  const wearers = await wearersOf(actor, subject, date);
+  return {
+    subject: { ...subject, siteName: site.name },
+    date,
+    ruleSetKey: governing.key,
+    ruleSetVersion: governing.version,
+    targetDb: adequacy === "not-stated" ? null : targetDb,
+    noises: noises.map(({ taskId, name, level, durationMin }) => ({
+      taskId,
+      taskName: name,
+      levelDb: level.levelDb,
+      durationMin,
+      hasSpectrum: level.octaveBandsDb !== null,
+    })),
+    isDurationAssumed: subject.kind === "task" && (await longestNominalMin(subject.id)) === null,
+    requiredGear: gear,
+    singles: rank(singles),
+    pairs: rank(pairs)
+      .filter(({ excludedBy }) => excludedBy?.code !== "no-data")
+      .slice(0, MOST_PAIRS),
+    wearers: wearers.slice(0, MOST_WEARERS),
+    hasMoreWearers: wearers.length > MOST_WEARERS,
+  };
+}
+
+/** How long each task of the subject lasts, in minutes by task. */
+async function minutesOf({ kind, id }: ChoiceSubject): Promise<Map<string, number>> {
+  if (kind === "task") return new Map([[id, (await longestNominalMin(id)) ?? ASSUMED_MIN]]);
+  const found = await rows<{ taskId: string; durationMin: number }>(
+    `SELECT task_id AS "taskId", duration_min AS "durationMin" FROM job_tasks WHERE job_id = :id`,
+    { id },
+  );
+  return new Map(found.map(({ taskId, durationMin }) => [taskId, durationMin]));
+}
+
+async function longestNominalMin(taskId: string): Promise<number | null> {
+  const found = await row<{ longest: number | null }>(
+    `SELECT max(j.duration_min) AS longest FROM job_tasks j JOIN jobs b ON b.id = j.job_id AND NOT b.is_archived WHERE j.task_id = :taskId`,
+    { taskId },
+  );
+  return found?.longest ?? null;
+}
+
+type WearerRow = Omit<Wearer, "fits"> & { wornGear: WornGear[] };
+
+/** Workers of the job, or of the jobs that have the task, with what is assigned to them for this use. */
+async function wearersOf(
+  actor: Actor,
+  { kind, id, siteId }: ChoiceSubject,
+  date: string,
+): Promise<Wearer[]> {
+  const ofSubject =
+    kind === "job"
+      ? "w.job_id = :id"
+      : "EXISTS (SELECT 1 FROM job_tasks j WHERE j.job_id = w.job_id AND j.task_id = :id)";
+  const ofUse =
+    kind === "job"
+      ? "a.task_id IS NULL AND a.area_id IS NULL"
+      : "(a.task_id = :id OR (a.task_id IS NULL AND (a.area_id IS NULL OR a.area_id = (SELECT area_id FROM tasks WHERE id = :id))))";
+  const found = await rows<WearerRow>(
+    `SELECT w.id, w.name, w.employee_number AS "employeeNumber", w.worn_gear AS "wornGear", w.hired_on::text AS "hiredOn",
+       (SELECT c.name FROM crew_memberships m JOIN crews c ON c.id = m.crew_id WHERE m.worker_id = w.id AND m.valid @> CAST(:date AS date)
+        ORDER BY lower(m.valid) DESC LIMIT 1) AS "crewName",
+       (SELECT i.name || coalesce(' + ' || o.name, '') FROM assignments a JOIN protector_models i ON i.id = a.inner_model_id
+          LEFT JOIN protector_models o ON o.id = a.outer_model_id
+        WHERE a.worker_id = w.id AND a.valid @> CAST(:date AS date) AND ${ofUse} ORDER BY a.task_id NULLS LAST, a.area_id NULLS LAST LIMIT 1) AS "currentName"
+     FROM workers w WHERE w.site_id = :siteId AND ${ofSubject} AND w.hired_on <= CAST(:date AS date) + 31
+       AND (w.left_on IS NULL OR w.left_on >= CAST(:date AS date)) AND ${visible(workerPolicy, actor, "w")}
+     ORDER BY w.name, w.id LIMIT ${MOST_WEARERS + 1}`,
+    { id, siteId, date },
+  );
+  const fits = await fitsOf(
+    found.map(({ id: workerId }) => workerId),
+    date,
+  );
+  return found.map((worker) => ({
+    ...worker,
+    fits: [...(fits.get(worker.id) ?? [])].map(([modelId, { parDb, hasPassed }]) => ({
+      modelId,
+      parDb,
+      hasPassed,
+    })),
+  }));
+}

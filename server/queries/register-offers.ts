@@ -1,0 +1,130 @@
+import { type ExchangeLaw, lawOf } from "../../shared/acoustics/exchange-law";
+import { outsideCriterion } from "../../shared/acoustics/outside-criterion";
+import { isInNoise } from "../../shared/acoustics/protection/at-ear";
+import {
+  isWornInside,
+  isWornOver,
+  type Offer,
+  type OwnFit,
+  type WornGear,
+} from "../../shared/acoustics/protection/choose-protector";
+import type {
+  BandAttenuation,
+  DayInput,
+  RuleSetVersion,
+  TimedTask,
+} from "../../shared/acoustics/types";
+import type { ProtectorUse } from "../../shared/schemas/protector";
+import { rows } from "../lib/db";
+import { type Actor, visible } from "../lib/policy";
+import { protectorPolicy } from "../policies";
+import { PROTECTOR_COLUMNS, toProtector } from "./day-inputs";
+import { combinationInForce } from "./own-attenuation";
+
+type OfferRow = Parameters<typeof toProtector>[0] & { stock: number | null };
+
+const NOT_STATED: ProtectorUse["worksWith"] = { helmet: null, glasses: null, respirator: null };
+
+/** The single devices that a site can give out on a date. */
+export async function offersAt(actor: Actor, siteId: string, date: string): Promise<Offer[]> {
+  const found = await rows<OfferRow>(
+    `SELECT DISTINCT ON (m.id) ${PROTECTOR_COLUMNS},
+       (SELECT sum(k.quantity)::int FROM stock_moves k WHERE k.site_id = :siteId AND k.model_id = m.id AND k.part = 'device') AS stock
+     FROM protector_models m JOIN protector_model_revisions p ON p.model_id = m.id AND p.effective_from <= :date
+     WHERE NOT m.is_archived AND ${visible(protectorPolicy, actor, "m")} ORDER BY m.id, p.effective_from DESC, p.number DESC`,
+    { siteId, date },
+  );
+  return found.map(({ stock, ...model }) => ({
+    inner: toProtector(model),
+    outer: null,
+    combinationBands: null,
+    name: model.name,
+    worksWith: { ...NOT_STATED, ...(model.data as Partial<ProtectorUse>).worksWith },
+    isArchived: false,
+    stock,
+  }));
+}
+
+/** Every plug under every muff, with the test data of the two together where there are any. */
+export async function pairsOf(singles: readonly Offer[], date: string): Promise<Offer[]> {
+  const inside = singles.filter(({ inner }) => isWornInside(inner.kind));
+  const over = singles.filter(({ inner }) => isWornOver(inner.kind));
+  if (inside.length === 0 || over.length === 0) return [];
+  const tested = await rows<{ innerId: string; outerId: string; bands: BandAttenuation }>(
+    `SELECT i.id AS "innerId", o.id AS "outerId", c.bands FROM unnest(CAST(:inside AS uuid[])) i(id) CROSS JOIN unnest(CAST(:over AS uuid[])) o(id)
+     JOIN protector_combinations c ON c.id = ${combinationInForce("i.id", "o.id", "CAST(:date AS date)")}`,
+    { inside: idsOf(inside), over: idsOf(over), date },
+  );
+  const bandsOf = new Map(
+    tested.map(({ innerId, outerId, bands }) => [`${innerId} ${outerId}`, bands]),
+  );
+  return inside.flatMap((plug) =>
+    over.map((muff) => ({
+      inner: plug.inner,
+      outer: muff.inner,
+      combinationBands: bandsOf.get(`${plug.inner.modelId} ${muff.inner.modelId}`) ?? null,
+      name: `${plug.name} + ${muff.name}`,
+      worksWith: {
+        helmet: both(plug.worksWith.helmet, muff.worksWith.helmet),
+        glasses: both(plug.worksWith.glasses, muff.worksWith.glasses),
+        respirator: both(plug.worksWith.respirator, muff.worksWith.respirator),
+      },
+      isArchived: false,
+      stock: plug.stock === null || muff.stock === null ? null : Math.min(plug.stock, muff.stock),
+    })),
+  );
+}
+
+const idsOf = (offers: readonly Offer[]) =>
+  `{${offers.map(({ inner }) => inner.modelId).join(",")}}`;
+
+const both = (one: boolean | null, other: boolean | null): boolean | null =>
+  one === false || other === false ? false : one === null || other === null ? null : true;
+
+/** The fit that counts, by worker and model. */
+export async function fitsOf(
+  workerIds: readonly string[],
+  date: string,
+): Promise<Map<string, Map<string, OwnFit>>> {
+  const found = await rows<OwnFit & { workerId: string; modelId: string }>(
+    `SELECT DISTINCT ON (f.worker_id, f.model_id) f.worker_id AS "workerId", f.model_id AS "modelId", v.par_db AS "parDb",
+       v.has_passed AS "hasPassed", f.tested_on::text AS "testedOn"
+     FROM fit_tests f JOIN fit_test_revisions v ON v.id = f.current_revision_id
+     WHERE f.worker_id = ANY (CAST(:ids AS uuid[])) AND NOT f.is_void AND v.par_db IS NOT NULL AND f.tested_on <= :date
+     ORDER BY f.worker_id, f.model_id, f.tested_on DESC, f.created_at DESC`,
+    { ids: `{${workerIds.join(",")}}`, date },
+  );
+  const fits = new Map<string, Map<string, OwnFit>>();
+  for (const { workerId, modelId, ...fit } of found)
+    fits.set(workerId, (fits.get(workerId) ?? new Map()).set(modelId, fit));
+  return fits;
+}
+
+/** What these tasks ask to be worn beside a protector. */
+export async function requiredGear(taskIds: readonly string[]): Promise<WornGear[]> {
+  const found = await rows<{ gear: WornGear }>(
+    "SELECT DISTINCT unnest(required_gear) AS gear FROM tasks WHERE id = ANY (CAST(:ids AS uuid[])) ORDER BY 1",
+    { ids: `{${taskIds.join(",")}}` },
+  );
+  return found.map(({ gear }) => gear);
+}
+
+/** Under a protector no threshold acts, and no table is read. @source osha-1910.95 App. B */
+export const lawAtEar = (governing: RuleSetVersion): ExchangeLaw => ({
+  ...lawOf(outsideCriterion(governing)),
+  table: null,
+  thresholdDb: null,
+});
+
+export type Noise = TimedTask & { level: NonNullable<TimedTask["level"]> };
+
+/** What asks for a protector: by EN 458 the tasks in noise; where the shift is judged, all of it. */
+export function noisesOf(
+  tasks: readonly TimedTask[],
+  adequacy: string,
+  { site, mustWear }: Pick<DayInput, "site" | "mustWear">,
+): Noise[] {
+  return tasks
+    .filter((task): task is Noise => task.level !== null && task.durationMin > 0)
+    .filter((task) => adequacy === "appendix-b" || mustWear || isInNoise(task, site.wearFromDb));
+}

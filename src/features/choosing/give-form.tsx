@@ -1,0 +1,261 @@
+import { useLingui } from "@lingui/react";
+import { useQuery } from "@tanstack/react-query";
+import { useState } from "react";
+import { z } from "zod";
+import { formatLevel } from "../../../shared/format/level";
+import type { ProtectorChoiceView, Wearer } from "../../../shared/schemas/choice";
+import type { Candidate, Gear } from "../../../shared/schemas/fit";
+import { Button } from "../../components/button";
+import { DataTable } from "../../components/data-table";
+import { Empty } from "../../components/empty";
+import {
+  DateField,
+  Form,
+  FormActions,
+  RadioGroup,
+  SubmitButton,
+  showIssuesOn,
+  useSchemaForm,
+} from "../../components/form";
+import { FormProblem } from "../../components/form-problem";
+import { TextButton, TextLink } from "../../components/link";
+import { useChangeKey } from "../../lib/change-key";
+import { useLocale } from "../../lib/i18n";
+import { references } from "../../lib/references";
+import { gearWord, passWord } from "../../lib/register-words";
+import { paths } from "../../paths";
+import { useAssignMany } from "./queries";
+
+const GiveFields = z.object({
+  use: z.enum(["subject", "everywhere"]),
+  fromDate: z.iso.date(),
+  workerIds: z.array(z.uuid()).min(1),
+});
+
+/** Who gets what was picked, for which use, from when: all of them or none. */
+export function GiveForm({
+  choice,
+  candidate,
+  onGiven,
+  onLeave,
+}: {
+  choice: ProtectorChoiceView;
+  candidate: Candidate;
+  onGiven: (workerIds: readonly string[], fromDate: string) => void;
+  onLeave: () => void;
+}) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const { subject, wearers, date } = choice;
+  const assign = useAssignMany();
+  const changeKey = useChangeKey();
+  /** In the order in which the server names them. */
+  const [sent, setSent] = useState<readonly string[]>([]);
+  const conflictOf = useGearConflict(candidate);
+  const form = useSchemaForm(GiveFields, {
+    keepAs: `${candidate.modelId} ${candidate.outerModelId ?? ""}`,
+    defaultValues: {
+      use: subject.kind === "task" ? "subject" : "everywhere",
+      fromDate: date,
+      workerIds: [],
+    },
+  });
+  const chosen = form.watch("workerIds");
+  const choose = (workerIds: string[]) =>
+    form.setValue("workerIds", workerIds, { shouldDirty: true, shouldValidate: chosen.length > 0 });
+  const free = wearers.filter((wearer) => conflictOf(wearer) === null);
+  const { errors } = form.formState;
+  const issueOf = (workerId: string): string | undefined => {
+    const index = sent.indexOf(workerId);
+    return index < 0
+      ? undefined
+      : (errors.workerIds as { message?: string }[] | undefined)?.[index]?.message;
+  };
+
+  return (
+    <Form
+      aria-label={i18n.t("Give {protector}", { protector: candidate.name })}
+      onSubmit={form.handleSubmit(({ use, fromDate, workerIds }) => {
+        if (assign.isPending) return;
+        const body = {
+          workerIds,
+          assignment: {
+            taskId: use === "subject" && subject.kind === "task" ? subject.id : null,
+            areaId: null,
+            innerModelId: candidate.modelId,
+            outerModelId: candidate.outerModelId,
+            fromDate,
+            toDate: null,
+            size: null,
+            audioDb: null,
+          },
+        };
+        setSent(workerIds);
+        assign.mutate(
+          { body, key: changeKey.keyFor(body) },
+          {
+            onSuccess: () => {
+              changeKey.forget();
+              onGiven(workerIds, fromDate);
+            },
+            onError: (error) => {
+              showIssuesOn(
+                {
+                  setError: (path, issue, options) =>
+                    form.setError(path.replace(/^assignment\./, "") as "fromDate", issue, options),
+                },
+                i18n,
+              )(error);
+            },
+          },
+        );
+      })}
+    >
+      {subject.kind === "task" && (
+        <RadioGroup
+          form={form}
+          name="use"
+          label={i18n.t("Worn")}
+          choices={[
+            { value: "subject", label: i18n.t("in the task {name}", { name: subject.name }) },
+            { value: "everywhere", label: i18n.t("everywhere in noise") },
+          ]}
+        />
+      )}
+      <DateField
+        form={form}
+        name="fromDate"
+        label={i18n.t("From")}
+        note={i18n.t("An open assignment of the same use ends the day before.")}
+      />
+      <p className="give-who">
+        <b>
+          {i18n.t(
+            "{count, plural, =0 {Nobody is chosen} one {# person is chosen} other {# people are chosen}}",
+            { count: chosen.length },
+          )}
+        </b>{" "}
+        {free.length > 0 && (
+          <>
+            <TextButton onClick={() => choose(free.map(({ id }) => id))}>
+              {i18n.t("Choose all {count}", { count: free.length })}
+            </TextButton>{" "}
+            <TextButton
+              onClick={() =>
+                choose(free.filter(({ currentName }) => currentName === null).map(({ id }) => id))
+              }
+            >
+              {i18n.t("Choose who has none")}
+            </TextButton>{" "}
+            {chosen.length > 0 && (
+              <TextButton onClick={() => choose([])}>{i18n.t("Choose nobody")}</TextButton>
+            )}
+          </>
+        )}
+      </p>
+      {errors.workerIds?.message && (
+        <p className="field-error" role="alert">
+          {i18n.t("Choose whom to give it to.")}
+        </p>
+      )}
+      <DataTable<Wearer>
+        caption={i18n.t("Who would wear it")}
+        rows={wearers}
+        rowKey={({ id }) => id}
+        isTwoLine
+        isSelected={({ id }) => chosen.includes(id)}
+        empty={
+          <Empty title={i18n.t("Nobody has this work on the nominal day of a job.")}>
+            {i18n.t("Give it to a worker on the worker’s own page.")}
+          </Empty>
+        }
+        columns={[
+          {
+            id: "worker",
+            head: i18n.t("Worker"),
+            isRowHead: true,
+            sortValue: ({ name }) => name,
+            cell: (wearer) => {
+              const conflict = conflictOf(wearer);
+              return (
+                <label className="choice">
+                  <input
+                    type="checkbox"
+                    checked={chosen.includes(wearer.id)}
+                    disabled={conflict !== null}
+                    onChange={(event) =>
+                      choose(
+                        event.target.checked
+                          ? [...chosen, wearer.id]
+                          : chosen.filter((id) => id !== wearer.id),
+                      )
+                    }
+                  />
+                  <span className="two-lines">
+                    {wearer.name}
+                    <span className="beneath">
+                      {conflict === null
+                        ? [wearer.employeeNumber, wearer.crewName].filter(Boolean).join(", ")
+                        : i18n.t("not with {gear}", { gear: gearWord(i18n, conflict) })}
+                    </span>
+                    {issueOf(wearer.id) && (
+                      <span className="field-error">{issueOf(wearer.id)}</span>
+                    )}
+                  </span>
+                </label>
+              );
+            },
+          },
+          {
+            id: "now",
+            head: i18n.t("Has now"),
+            cell: ({ currentName }) => currentName ?? <b>{i18n.t("No protector")}</b>,
+          },
+          {
+            id: "fit",
+            head: i18n.t("Own fit"),
+            hidesOnPhone: true,
+            cell: ({ id, fits }) => {
+              const fit = fits.find(({ modelId }) => modelId === candidate.modelId);
+              if (candidate.outerModelId !== null) return "–";
+              return fit ? (
+                <span className="two-lines">
+                  <span className="mono">{formatLevel(fit.parDb, locale)}</span>
+                  <span className={fit.hasPassed === false ? "is-fault" : "beneath"}>
+                    {passWord(i18n, fit.hasPassed)}
+                  </span>
+                </span>
+              ) : (
+                <TextLink to={paths.fittingOf(id)}>{i18n.t("Test the fit")}</TextLink>
+              );
+            },
+          },
+        ]}
+      />
+      {choice.hasMoreWearers && (
+        <p className="beneath">
+          {i18n.t("The first {count} by name; the others on their own pages.", {
+            count: wearers.length,
+          })}
+        </p>
+      )}
+      <FormProblem error={assign.error} />
+      <FormActions>
+        <SubmitButton isBusy={assign.isPending}>
+          {i18n.t("Give {protector}", { protector: candidate.name })}
+        </SubmitButton>
+        <Button onClick={onLeave}>{i18n.t("Leave it")}</Button>
+      </FormActions>
+    </Form>
+  );
+}
+
+/** What a worker wears that the device, or one of two, isn't to be worn with. */
+function useGearConflict({ modelId, outerModelId }: Candidate): (wearer: Wearer) => Gear | null {
+  const protectors = useQuery(references.protectors());
+  const worksWith = (protectors.data?.rows ?? [])
+    .filter(({ id }) => id === modelId || id === outerModelId)
+    .map(({ data }) => data.worksWith);
+  return ({ wornGear }) =>
+    wornGear.find((gear) => worksWith.some((works) => works[gear] === false)) ?? null;
+}

@@ -1,0 +1,37 @@
+import { queryOptions, useMutation, useQueryClient } from "@tanstack/react-query";
+import { IssueSlips, ProtectorChoiceView } from "../../../shared/schemas/choice";
+import { AssignmentList, type ManyAssignmentsInput } from "../../../shared/schemas/worker";
+import { api } from "../../lib/api";
+
+export const choiceQueries = {
+  choice: (query: { taskId?: string; jobId?: string }) =>
+    queryOptions({
+      queryKey: ["workers", "choice", query],
+      queryFn: ({ signal }) =>
+        api.get("/protector-choice", { query, schema: ProtectorChoiceView, signal }),
+      enabled: query.taskId !== undefined || query.jobId !== undefined,
+    }),
+  slips: (workerIds: string) =>
+    queryOptions({
+      queryKey: ["workers", "slips", workerIds],
+      queryFn: ({ signal }) =>
+        api.get("/issue-slips", { query: { workerIds }, schema: IssueSlips, signal }),
+      select: ({ rows }) => rows,
+      enabled: workerIds !== "",
+    }),
+};
+
+/** The same protector for many, all of them or none. */
+export function useAssignMany() {
+  const client = useQueryClient();
+  return useMutation({
+    mutationFn: ({ body, key }: { body: ManyAssignmentsInput; key: string }) =>
+      api.post("/assignments/many", { body, schema: AssignmentList, idempotencyKey: key }),
+    onSuccess: () =>
+      Promise.all([
+        client.invalidateQueries({ queryKey: ["workers"] }),
+        client.invalidateQueries({ queryKey: ["protectors"] }),
+        client.invalidateQueries({ queryKey: ["waiting"] }),
+      ]),
+  });
+}

@@ -1,0 +1,151 @@
+// @vitest-environment jsdom
+import { render, screen, within } from "@testing-library/react";
+import userEvent from "@testing-library/user-event";
+import { expect, test, vi } from "vitest";
+import { NewProtectorInput } from "../../../shared/schemas/protector";
+import { Form, SubmitButton, useSchemaForm } from "../../components/form";
+import { TestLanguage } from "../../lib/test-i18n";
+import { ProtectorDataFields } from "./data-fields";
+
+const NOTHING = {
+  usRatingDb: null,
+  snrDb: null,
+  hDb: null,
+  mDb: null,
+  lDb: null,
+  slc80Db: null,
+  bands: null,
+  active: null,
+  percentile: null,
+  usLabel: null,
+  subjectsDb: null,
+  sizes: [],
+  worksWith: { helmet: null, glasses: null, respirator: null },
+  cushionsEveryDays: null,
+  tipsEveryDays: null,
+  auClass: null,
+  effectiveFrom: "2026-01-05",
+  reason: null,
+};
+
+type Kind = "earmuff" | "foam-plug" | "active-earmuff";
+
+function DataForm({
+  kind,
+  data,
+  onSave,
+}: {
+  kind: Kind;
+  data: object;
+  onSave: (value: unknown) => void;
+}) {
+  const form = useSchemaForm(NewProtectorInput, {
+    defaultValues: { name: "Slate", kind, data: { ...NOTHING, ...data } },
+    keepAs: null,
+  });
+  return (
+    <Form aria-label="Data" onSubmit={form.handleSubmit((value) => onSave(value.data))}>
+      <ProtectorDataFields form={form} needsReason={false} />
+      <SubmitButton>Save</SubmitButton>
+    </Form>
+  );
+}
+
+function show({ kind = "earmuff", data = {} }: { kind?: Kind; data?: object } = {}) {
+  const onSave = vi.fn();
+  render(
+    <TestLanguage>
+      <DataForm kind={kind} data={data} onSave={onSave} />
+    </TestLanguage>,
+  );
+  return onSave;
+}
+
+// By label, for a search by role among so many fields is slow.
+const cell = (name: string | RegExp) => screen.getByLabelText(name);
+const save = () => userEvent.click(screen.getByText("Save"));
+const same = (value: number, count = 8) => Array<number>(count).fill(value);
+
+test("what the label can't say stands at its field, with what to do", async () => {
+  const percentile = { mostDb: 28, fewDb: null };
+  const onSave = show({ data: { hDb: 31, mDb: 25, lDb: 18, percentile } });
+  await userEvent.type(cell("SNR, dB"), "15");
+  await userEvent.type(cell("Few users, dB"), "20");
+  await save();
+  expect(cell("SNR, dB").getAttribute("aria-invalid")).toBe("true");
+  expect(cell("SNR, dB").getAttribute("aria-describedby")).toBeTruthy();
+  expect(screen.getByText(/^SNR: The SNR lies below the L/)).toBeTruthy();
+  expect(cell("Few users, dB").getAttribute("aria-invalid")).toBe("true");
+  expect(screen.getByText(/The two may be swapped/)).toBeTruthy();
+  expect(onSave).not.toHaveBeenCalled();
+}, 15_000);
+
+test("label and bands are held against each other while they are typed", async () => {
+  // 30 dB less a deviation of 2 in every band; SNR counts from the C-weighted level, 1.5 dB above the A-weighted of pink noise.
+  show({ data: { bands: { meanDb: same(30), sdDb: same(2) } } });
+  const beside = screen.getByRole("region", { name: "The label beside its test data" });
+  expect(within(beside).queryByText(/lie further apart/)).toBeNull();
+  await userEvent.type(cell("SNR, dB"), "33");
+  expect(within(beside).getByText(/^SNR: label and test data lie further apart/)).toBeTruthy();
+  expect(within(beside).getByText("+3.5")).toBeTruthy();
+});
+
+test("nine third-octaves go in by one paste, and give the US number", async () => {
+  const onSave = show({ data: { usRatingDb: 20 } });
+  for (const row of ["Mean attenuation", "Standard deviation"]) {
+    await userEvent.click(cell(`${row}, 3150 Hz`));
+    await userEvent.paste(same(row.startsWith("Mean") ? 30 : 2, 9).join("\t"));
+  }
+  expect(screen.getByText("US test data")).toBeTruthy();
+  await save();
+  expect(onSave).toHaveBeenCalledWith(
+    expect.objectContaining({ usLabel: { meanDb: same(30, 9), sdDb: same(2, 9) } }),
+  );
+});
+
+test("a subject's missing band is named with the subject", async () => {
+  const onSave = show();
+  const lines = [same(24).join("\t"), same(26).slice(0, 6).join("\t")].join("\n");
+  await userEvent.click(cell(/^One subject a line/));
+  await userEvent.paste(lines);
+  await save();
+  expect(screen.getByText(/^Subject 2, 4000 Hz: /)).toBeTruthy();
+  expect(onSave).not.toHaveBeenCalled();
+});
+
+test("means and deviations can be taken from the subjects", async () => {
+  const onSave = show();
+  await userEvent.click(cell(/^One subject a line/));
+  await userEvent.paste([24, 26, 28].map((value) => same(value).join("\t")).join("\n"));
+  await userEvent.click(screen.getByText(/^Take mean and deviation/));
+  await save();
+  // 24, 26 and 28 have a mean of 26 and a deviation of 2.
+  expect(onSave).toHaveBeenCalledWith(
+    expect.objectContaining({ bands: { meanDb: same(26), sdDb: same(2) } }),
+  );
+});
+
+test("only what a kind can have is asked for", () => {
+  show({ kind: "foam-plug" });
+  expect(screen.queryByText("It cancels noise electronically")).toBeNull();
+  expect(screen.queryByLabelText(/^New cushions every/)).toBeNull();
+  expect(cell(/^New tips every/)).toBeTruthy();
+});
+
+test("what is stated is never hidden, whatever the kind", () => {
+  show({ kind: "foam-plug", data: { cushionsEveryDays: 90 } });
+  expect(cell(/^New cushions every/)).toBeTruthy();
+});
+
+test("sizes and gear go with the rest", async () => {
+  const onSave = show();
+  await userEvent.type(cell(/^Sizes/), "S, M,L");
+  await userEvent.selectOptions(cell("glasses"), "no");
+  await save();
+  expect(onSave).toHaveBeenCalledWith(
+    expect.objectContaining({
+      sizes: ["S", "M", "L"],
+      worksWith: { helmet: null, glasses: false, respirator: null },
+    }),
+  );
+});

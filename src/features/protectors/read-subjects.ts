@@ -1,0 +1,37 @@
+import { OCTAVE_BANDS_HZ } from "../../../shared/acoustics/types";
+import type { Locale } from "../../../shared/i18n/index";
+import { Unreadable } from "../../components/form";
+import type { Typed } from "../../components/number-input";
+import { cellsOf, isFrequency, readCell } from "../../components/read-bands";
+
+const COUNT = OCTAVE_BANDS_HZ.length;
+
+/**
+ * Attenuation of single test subjects, one a line: eight bands, or seven from 125 Hz on. A head of frequencies is left
+ * out, and so is a first column of names or numbers. What is missing stays empty, what is too much can't be read:
+ * neither is dropped without a word.
+ */
+export function readSubjects(text: string, locale: Locale): Typed[][] {
+  const lines = cellsOf(text);
+  const rows = lines.filter((cells) => !isHead(cells));
+  const hasNames = rows.length > 0 && namesSubjects(rows, locale);
+  return rows.map((row) => {
+    const cells = hasNames ? row.slice(1) : row;
+    const from = cells.length === COUNT - 1 ? 1 : 0;
+    const values = cells.slice(0, COUNT - from).map((cell) => readCell(cell, locale));
+    const beyond = cells.slice(COUNT - from).join(" ");
+    if (beyond !== "") values[values.length - 1] = new Unreadable("too-many-bands", beyond);
+    return OCTAVE_BANDS_HZ.map((_, band) => values[band - from] ?? null);
+  });
+}
+
+const isHead = (cells: readonly string[]): boolean =>
+  cells.filter(isFrequency).length >= COUNT - 1 && cells.some(namesHighest);
+
+/** A first column beyond the bands, of words, or counting from 1. */
+const namesSubjects = (rows: readonly string[][], locale: Locale): boolean =>
+  rows.every(({ length }) => length === COUNT + 1) ||
+  rows.every(([first = ""]) => readCell(first, locale) instanceof Unreadable) ||
+  (rows.length > 1 && rows.every(([first], index) => first === String(index + 1)));
+
+const namesHighest = (cell: string): boolean => /^8\s*(000|k)/i.test(cell);

@@ -1,0 +1,149 @@
+import type { I18n } from "@lingui/core";
+import { useLingui } from "@lingui/react";
+import { useQuery } from "@tanstack/react-query";
+import { useState } from "react";
+import { useParams } from "react-router-dom";
+import { formatDate } from "../../shared/format/date";
+import { formatWholeLevel } from "../../shared/format/level";
+import type { Locale } from "../../shared/i18n/index";
+import { ruleSetVersion } from "../../shared/rule-sets";
+import type { ResultView } from "../../shared/schemas/result";
+import { Empty } from "../components/empty";
+import { Failed } from "../components/failed";
+import { TextLink } from "../components/link";
+import { PageBody, PageHead, Section } from "../components/page";
+import { dayResultQuery } from "../features/results/queries";
+import { WearingCost } from "../features/results/wearing-cost";
+import { useUser } from "../features/session/session";
+import { OwnReportForm } from "../features/wearing/own-report-form";
+import { wearingQueries } from "../features/wearing/queries";
+import { useLocale } from "../lib/i18n";
+import { paths } from "../paths";
+import "../styles/sample.css";
+import "../styles/wearing.css";
+
+/**
+ * One day of a worker's own: what taking the protector off cost, and the worker's own word on how long it was worn. It
+ * shares no component with the worker's first page, which a piece that is shared would make larger.
+ */
+export function Component() {
+  const { i18n } = useLingui();
+  const { workerId } = useUser();
+  const { date = "" } = useParams();
+  if (workerId === null)
+    return (
+      <PageBody size="worker">
+        <PageHead title={i18n.t("A day of mine")} />
+        <Empty title={i18n.t("Your sign-in is not linked to a worker.")} />
+      </PageBody>
+    );
+  return <OwnDayPage key={date} workerId={workerId} date={date} />;
+}
+
+function OwnDayPage({ workerId, date }: { workerId: string; date: string }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const siteId = useQuery(wearingQueries.ownSite(workerId));
+  const result = useQuery(dayResultQuery(workerId, date));
+  const error = siteId.error ?? result.error;
+  return (
+    <PageBody size="worker">
+      <div className="sample-page own-day">
+        <PageHead
+          way={<TextLink to={paths.me}>{i18n.t("My page")}</TextLink>}
+          title={formatDate(date, locale)}
+          lead={result.data && reachedWords(i18n, locale, result.data)}
+        />
+        {error ? (
+          <Failed
+            error={error}
+            onRetry={() => {
+              void siteId.refetch();
+              void result.refetch();
+            }}
+          />
+        ) : siteId.data === undefined || !result.data ? (
+          <span className="loading-line" />
+        ) : (
+          <Wearing result={result.data} workerId={workerId} siteId={siteId.data} />
+        )}
+      </div>
+    </PageBody>
+  );
+}
+
+/** What reached the ear that day; no more than is known. */
+function reachedWords(
+  i18n: I18n,
+  locale: Locale,
+  { figures: { atEarDb, atEarBound, outsideDb, outsideBound, verdictAtEar, reason } }: ResultView,
+): string {
+  const level = formatWholeLevel(atEarDb, locale);
+  const around = formatWholeLevel(outsideDb, locale);
+  if (reason === "wearing-unknown" && verdictAtEar === "not-assessed")
+    return i18n.t(
+      "We can’t say how much reached your ear: nobody wrote down how long you wore your protector.",
+    );
+  if (atEarDb !== null && atEarBound === "exact" && outsideDb !== null && outsideBound === "exact")
+    return i18n.t("{level} decibels reached your ear, {around} were around you.", {
+      level,
+      around,
+    });
+  if (atEarDb !== null && atEarBound === "lower")
+    return i18n.t("At least {level} decibels reached your ear.", { level });
+  if (atEarDb !== null && atEarBound === "upper")
+    return i18n.t("At most {level} decibels reached your ear.", { level });
+  if (atEarDb !== null) return i18n.t("{level} decibels reached your ear.", { level });
+  return i18n.t("We can’t say how much reached your ear.");
+}
+
+function Wearing({
+  result: { input, evaluation, governing, date },
+  workerId,
+  siteId,
+}: {
+  result: ResultView;
+  workerId: string;
+  siteId: string;
+}) {
+  const { i18n } = useLingui();
+  const [isSent, setSent] = useState(false);
+  const ruleSet = ruleSetVersion(governing.key, governing.version);
+  if (!input || !evaluation) return null;
+  const worn = new Set(
+    evaluation.tasks.filter(({ isWorn }) => isWorn).map(({ timedTaskId }) => timedTaskId),
+  );
+  const tasks = new Map(
+    input.shifts
+      .flatMap((shift) => shift.tasks)
+      .filter(({ id }) => worn.has(id))
+      .map(({ taskId, name }) => [taskId, name]),
+  );
+  return (
+    <>
+      {ruleSet && <WearingCost input={input} governing={ruleSet} isOwn />}
+      {tasks.size > 0 && (
+        <Section title={i18n.t("How long did you wear it?")} id="own-report">
+          {isSent ? (
+            <p role="status">
+              {i18n.t("Thank you. The days that rest on it are being worked out again.")}
+            </p>
+          ) : (
+            <>
+              <p className="beneath">
+                {i18n.t("It counts together with what was seen, where nobody wrote it down.")}
+              </p>
+              <OwnReportForm
+                workerId={workerId}
+                siteId={siteId}
+                date={date}
+                tasks={[...tasks].map(([id, name]) => ({ id, name }))}
+                onSent={() => setSent(true)}
+              />
+            </>
+          )}
+        </Section>
+      )}
+    </>
+  );
+}

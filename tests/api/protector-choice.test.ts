@@ -1,0 +1,164 @@
+import { expect, test } from "vitest";
+import type { IssueSlip, ProtectorChoiceView } from "../../shared/schemas/choice";
+import {
+  buildAssignment,
+  buildCrew,
+  buildFitTest,
+  buildJob,
+  buildProtector,
+  buildSite,
+  buildTask,
+  buildUser,
+  buildWorker,
+  type Site,
+  select,
+  signInAs,
+} from "../factories";
+import { describeEndpoint } from "./five-cases";
+
+/** All of it at 1 kHz, where the weightings A and C are 0 dB: LC equals LA. */
+const at1kHz = (levelDb: number) => [20, 20, 20, 20, levelDb, 20, 20, 20];
+
+const officerAt = async ({ organizationId }: Site) =>
+  signInAs(await buildUser({ organizationId, roles: ["officer"] }));
+
+describeEndpoint({
+  route: "GET /protector-choice",
+  as: "auditor",
+  not: "supervisor",
+  event: null,
+  bad: { path: "&jobId=none" },
+  call: async (site) => ({
+    method: "get",
+    path: `/protector-choice?taskId=${(await buildTask({ site })).id}`,
+  }),
+});
+describeEndpoint({
+  route: "GET /issue-slips",
+  as: "officer",
+  not: "supervisor",
+  event: null,
+  bad: { path: ",none" },
+  call: async (site) => ({
+    method: "get",
+    path: `/issue-slips?workerIds=${(await buildWorker({ site })).id}`,
+  }),
+});
+
+test("orders the register by EN 458's words for a task, and says what decided", async () => {
+  const site = await buildSite();
+  const { organizationId } = site;
+  const task = await buildTask({ site, levelDb: 98, octaveBandsDb: at1kHz(98) });
+  const job = await buildJob({ site, tasks: [{ taskId: task.id, durationMin: 120 }] });
+  const worker = await buildWorker({ site, jobId: job.id });
+  const other = await buildWorker({ site });
+  const bySnr = (name: string, snrDb: number, worksWith?: object) =>
+    buildProtector({ organizationId, name, data: { snrDb, usRatingDb: null, worksWith } });
+  // EN 458 Annex A at an action value of 85 dB: 78 is good, 68 too much, 86 too little.
+  await bySnr("Weak", 12);
+  const good = await bySnr("Good", 20);
+  await bySnr("Strong", 30);
+  const withGlasses = { helmet: null, glasses: false, respirator: null };
+  await bySnr("Not with glasses", 20, withGlasses);
+  await buildProtector({
+    organizationId,
+    name: "No data",
+    data: { snrDb: null, usRatingDb: null },
+  });
+  await select("UPDATE tasks SET required_gear = '{glasses}' WHERE id = $1", [task.id]);
+  await buildAssignment({ worker, inner: good });
+
+  const client = await officerAt(site);
+  const { status, body } = await client.get(`/protector-choice?taskId=${task.id}`);
+  expect(status).toBe(200);
+  const choice = body as ProtectorChoiceView;
+  expect(choice.noises).toMatchObject([{ levelDb: 98, durationMin: 120, hasSpectrum: true }]);
+  expect(choice.isDurationAssumed).toBe(false);
+  expect(choice.singles.map(({ name, word, decidedBy }) => [name, word, decidedBy])).toEqual([
+    ["Good", "good", "first"],
+    ["Strong", "too-much", "adequacy"],
+    ["Weak", "too-little", "adequacy"],
+    ["Not with glasses", "good", "compatibility"],
+    ["No data", null, "adequacy"],
+  ]);
+  expect(choice.singles[0]?.wornDb).toBeCloseTo(78, 6);
+  expect(choice.singles[3]?.excludedBy).toEqual({ code: "gear", gear: "glasses" });
+  // Nobody tested two of them together, and the directive knows no rule of thumb.
+  expect(choice.pairs).toEqual([]);
+  expect(choice.wearers.map(({ id, currentName }) => [id, currentName])).toEqual([
+    [worker.id, "Good"],
+  ]);
+  expect(choice.wearers.map(({ id }) => id)).not.toContain(other.id);
+});
+
+test("two together in the US: five more than the better one after its derating", async () => {
+  const site = await buildSite({ governingRuleSet: "us-general-industry" });
+  const { organizationId } = site;
+  const task = await buildTask({ site, levelDb: 100, metric: { kind: "steady" } });
+  const job = await buildJob({ site, tasks: [{ taskId: task.id, durationMin: 480 }] });
+  const rated = (name: string, kind: string, usRatingDb: number) =>
+    buildProtector({ organizationId, name, kind, data: { snrDb: null, usRatingDb } });
+  const plug = await rated("Plug", "foam-plug", 29);
+  const muff = await rated("Muff", "earmuff", 24);
+  await rated("Band", "banded-plug", 17);
+
+  const client = await officerAt(site);
+  const { body } = await client.get(`/protector-choice?jobId=${job.id}`);
+  const choice = body as ProtectorChoiceView;
+  // 1910.95 App. B: 100 − (29 − 7) = 78; OSHA Technical Manual III:5: 100 − (22 + 5) = 73.
+  expect(
+    choice.singles.map(({ name, wornDb }) => [name, wornDb && Math.round(wornDb * 1e6)]),
+  ).toEqual([
+    ["Plug", 78_000_000],
+    ["Muff", 83_000_000],
+    ["Band", 90_000_000],
+  ]);
+  expect(choice.pairs).toHaveLength(1);
+  expect(choice.pairs[0]).toMatchObject({
+    modelId: plug.id,
+    outerModelId: muff.id,
+    name: "Plug + Muff",
+    word: "enough",
+  });
+  expect(choice.pairs[0]?.wornDb).toBeCloseTo(73, 6);
+});
+
+test("a task in no nominal day stands for eight hours, and says so", async () => {
+  const site = await buildSite();
+  const task = await buildTask({ site, levelDb: 90 });
+  const client = await officerAt(site);
+  const { body } = await client.get(`/protector-choice?taskId=${task.id}`);
+  expect(body).toMatchObject({ isDurationAssumed: true, noises: [{ durationMin: 480 }] });
+});
+
+test("a slip has each protector with its worst task, fit and crew; another organization's worker is not found", async () => {
+  const site = await buildSite();
+  const { organizationId } = site;
+  const loud = await buildTask({ site, name: "Loud", levelDb: 98, octaveBandsDb: at1kHz(98) });
+  const quiet = await buildTask({ site, name: "Quiet", levelDb: 70 });
+  const job = await buildJob({
+    site,
+    tasks: [
+      { taskId: loud.id, durationMin: 60 },
+      { taskId: quiet.id, durationMin: 400 },
+    ],
+  });
+  const worker = await buildWorker({ site, jobId: job.id });
+  await buildCrew({ site, name: "Days", members: [worker] });
+  const muff = await buildProtector({ organizationId, name: "Muff", data: { snrDb: 20 } });
+  await buildAssignment({ worker, inner: muff });
+  await buildFitTest({ worker, model: muff });
+
+  const client = await officerAt(site);
+  const { body } = await client.get(`/issue-slips?workerIds=${worker.id}`);
+  const [slip] = body.rows as IssueSlip[];
+  expect(slip?.worker).toMatchObject({ name: worker.name, crewName: "Days" });
+  expect(slip?.protectors).toHaveLength(1);
+  const [device] = slip!.protectors;
+  expect(device).toMatchObject({ name: "Muff", taskName: "Loud", outsideDb: 98 });
+  expect(device?.fit).not.toBeNull();
+
+  const foreign = await buildWorker();
+  const refused = await client.get(`/issue-slips?workerIds=${worker.id},${foreign.id}`);
+  expect(refused.status).toBe(404);
+});
