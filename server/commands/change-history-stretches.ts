@@ -13,7 +13,7 @@ import type { TimeHistory } from "../models/survey";
 import { type FacingRun, facedShift } from "../queries/faced-shifts";
 import { evaluateStored, type HistoryFacts, historyFacts } from "../queries/histories";
 import { recomputeRunDay } from "./recompute-run-day";
-import { reasonFor, sinceLeftOut } from "./record-run";
+import { leftOutOf, reasonFor } from "./record-run";
 import { presentRevision, writeHistoryReadings } from "./write-history-readings";
 
 type Issues = ReturnType<typeof issue>[];
@@ -91,7 +91,7 @@ async function doubtOfShift(
     covers,
     shift: await facedShift({ ...run, span: { from: run.from, to: run.to } }),
     durationMin: countedMin,
-    leftOut: leftOut && sinceLeftOut(leftOut, countedMin),
+    leftOut: leftOut && (await leftOutOf(run, leftOut, countedMin)),
   });
 }
 

@@ -1,7 +1,7 @@
 import { randomUUID } from "node:crypto";
 import type { RunCorrection, RunInput, StoredReading } from "../../shared/schemas/run";
 import { findRunDoubts, type RunDoubt } from "../../shared/schemas/run-doubts";
-import { leftOutIn, type StoredLeftOut } from "../histories/left-out";
+import type { StoredLeftOut } from "../histories/left-out";
 import { recordAudit } from "../lib/audit";
 import { execute, row, rows } from "../lib/db";
 import { AppError, issue, unprocessable } from "../lib/errors";
@@ -10,7 +10,7 @@ import type { Actor } from "../lib/policy";
 import { isoInstant } from "../lib/sql-instant";
 import type { Run } from "../models/instrument";
 import { calibrationOn } from "../queries/calibrations";
-import { type FacingRun, facedShift } from "../queries/faced-shifts";
+import { type FacingRun, facedShift, facedShifts } from "../queries/faced-shifts";
 import { leastRunMin } from "../queries/outings";
 
 type GivenReading = RunInput["readings"][number] &
@@ -128,14 +128,21 @@ export async function doubtsOf(
     needsChecks,
     covers,
     shift: isOfDay ? await facedShift(run) : null,
-    leftOut: leftOut && durationMin !== null ? sinceLeftOut(leftOut, durationMin) : null,
+    leftOut: leftOut && durationMin !== null ? await leftOutOf(run, leftOut, durationMin) : null,
     shown,
   });
 }
 
 /** A run's minutes are those that count, unless an instrument's own figures stand beside its history's. */
-export function sinceLeftOut(leftOut: StoredLeftOut, durationMin: number) {
-  const minutes = leftOutIn(leftOut, null)?.minutes ?? 0;
+export async function leftOutOf(run: FacingRun, leftOut: StoredLeftOut, durationMin: number) {
+  const shifts = await facedShifts(
+    leftOut.spans.map(([from, to]) => ({ ...run, span: { from, to } })),
+  );
+  const minutes = leftOut.spans.reduce(
+    (sum, [from, to], at) =>
+      sum + (shifts[at]?.insideMin ?? (Date.parse(to) - Date.parse(from)) / 60_000),
+    0,
+  );
   const isCountedOnly = Math.abs(durationMin - leftOut.countedMin) < SAME_MIN;
   return { minutes, isKnown: leftOut.how !== "unknown", isInDuration: !isCountedOnly };
 }

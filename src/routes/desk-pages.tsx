@@ -1,6 +1,5 @@
 import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
-import { useState } from "react";
 import { matchRoutes, type RouteObject, useRoutes } from "react-router-dom";
 import { measuringRoutes } from "./measuring-routes";
 import { type LoadPage, pageRoute, withWords } from "./page-loading";
@@ -24,9 +23,13 @@ function createDeskRoutes(i18n: I18n): RouteObject[] {
   return routes;
 }
 
+/** Made once: a page that still loads throws away what the component around it holds. */
+const made = new WeakMap<I18n, RouteObject[]>();
+
 /** Pages of the desk, which are nobody's first: a worker's phone does not load where they lie. */
 export function Component() {
   const { i18n } = useLingui();
-  const [routes] = useState(() => createDeskRoutes(i18n));
+  const routes = made.get(i18n) ?? createDeskRoutes(i18n);
+  made.set(i18n, routes);
   return useRoutes(routes);
 }

@@ -45,6 +45,8 @@ const history = (overrides: Partial<HistoryView> = {}): HistoryView => ({
   valuesCount: 28_800,
   channels: ["laeq", "las", "lcpeak"],
   stretches: [{ kind: "task", taskId: grinding, fromS: 3600, toS: 7200 }],
+  leftOut: null,
+  covers: "shift",
   taskNames: { [grinding]: "Grinding" },
   tasks: [
     { id: grinding, name: "Grinding", durationMin: 60 },
@@ -196,7 +198,7 @@ describe("what a history comes to", () => {
     });
     expect(within(table).getByRole("row", { name: /^LAeq/ })).toHaveTextContent("88.090.4−2.4");
     const bound = within(table).getByRole("row", { name: /90 dB, 5 dB exchange/ });
-    expect(bound).toHaveTextContent(/at most≤\s61\s%≤\s61\s%/);
+    expect(bound).toHaveTextContent(/at most≤61\s%≤61\s%/);
   });
 
   test("the picture has its words", async () => {
@@ -273,6 +275,69 @@ describe("drawing without a pointer", () => {
     await user.click(screen.getByRole("button", { name: "Take back" }));
     expect(await rowOf(/^Grinding/)).toBeVisible();
     expect(screen.queryByRole("button", { name: "Save the brackets" })).toBeNull();
+  });
+});
+
+describe("how the time left out was", () => {
+  const out = { kind: "left-out", fromS: 600, toS: 1200, reason: "Knocked microphone" } as const;
+  const ask = () => screen.findByRole("form", { name: "How the time left out was" });
+
+  test("is asked where the run speaks for a shift, unknown unless somebody says", async () => {
+    const user = userEvent.setup();
+    open(history({ stretches: [out], leftOut: { how: "unknown" } }));
+    const form = within(await ask());
+    expect(form.getByRole("radio", { name: /^not known/ })).toBeChecked();
+    expect(screen.queryByRole("button", { name: "Save the brackets" })).toBeNull();
+    await user.click(form.getByRole("radio", { name: /^quiet/ }));
+    await user.click(screen.getByRole("button", { name: "Save the brackets" }));
+    expect(await form.findByText("This is needed.")).toBeVisible();
+    expect(put).not.toHaveBeenCalled();
+    await user.type(form.getByLabelText("Level there"), "62.5");
+    const leftOut = { how: "quiet", levelDb: 62.5 } as const;
+    put.mockReturnValue({
+      status: 200,
+      body: history({ stretches: [out], leftOut, revision: 3 }),
+    });
+    await user.click(screen.getByRole("button", { name: "Save the brackets" }));
+    await waitFor(() => expect(put).toHaveBeenCalledTimes(1));
+    expect(put.mock.calls[0]?.[0].body).toMatchObject({ stretches: [out], leftOut });
+    await waitFor(() =>
+      expect(screen.queryByRole("button", { name: "Save the brackets" })).toBeNull(),
+    );
+    expect(form.getByRole("radio", { name: /^quiet/ })).toBeChecked();
+  });
+
+  test("and of a part of the shift it is not", async () => {
+    open(history({ stretches: [out], covers: "part", leftOut: { how: "unknown" } }));
+    await rowOf(/Knocked microphone/);
+    expect(screen.queryByRole("form", { name: "How the time left out was" })).toBeNull();
+  });
+
+  test("a run that no longer covers its shift is kept only for a reason", async () => {
+    const user = userEvent.setup();
+    localStorage.setItem(`dinward.history-draft.${id(1)}.2`, JSON.stringify([out]));
+    open();
+    const params = { coveredMin: 115, shiftMin: 480 };
+    const issue = { path: "keptReason", code: "shorter-than-shift", params };
+    put.mockReturnValueOnce({
+      status: 422,
+      body: { code: "invalid", issues: [{ ...issue, path: ["keptReason"] }] },
+    });
+    await user.click(await screen.findByRole("button", { name: "Save the brackets" }));
+    const form = within(await ask());
+    expect(await form.findByRole("alert")).toHaveTextContent(/shift/);
+    await user.type(form.getByLabelText("Keep it, because…"), "nothing else there is");
+    put.mockReturnValueOnce({
+      status: 200,
+      body: history({ stretches: [out], leftOut: { how: "unknown" }, revision: 3 }),
+    });
+    await user.click(screen.getByRole("button", { name: "Save the brackets" }));
+    await waitFor(() => expect(put).toHaveBeenCalledTimes(2));
+    expect(put.mock.calls[1]?.[0].body).toMatchObject({
+      leftOut: { how: "unknown" },
+      keptReason: "nothing else there is",
+    });
+    await waitFor(() => expect(form.queryByRole("alert")).toBeNull());
   });
 });
 

@@ -19,7 +19,7 @@ import {
 import type { ResultView } from "../../shared/schemas/result";
 import { ConflictDialog, type ConflictField } from "../components/conflict-dialog";
 import { Failed } from "../components/failed";
-import type { Choice } from "../components/form";
+import { type Choice, showIssuesOn } from "../components/form";
 import { FormProblem } from "../components/form-problem";
 import { TextLink } from "../components/link";
 import { Folio, PageBody, PageHead, Section } from "../components/page";
@@ -46,11 +46,14 @@ import {
   criterionText,
   lengthText,
   rangeText,
+  unaccountedText,
 } from "../features/histories/history-words";
 import { CHANNEL_SYMBOL } from "../features/histories/import-words";
+import { type SaidOfLeftOut, useLeftOut } from "../features/histories/left-out-form";
 import { useDrawing } from "../features/histories/use-drawing";
+import { doubtSentence } from "../features/outings/doubt-words";
 import { dayResultQuery } from "../features/results/queries";
-import { apiAddress } from "../lib/api";
+import { ApiError, apiAddress } from "../lib/api";
 import { useLocale } from "../lib/i18n";
 import { problemText } from "../lib/problem-text";
 import { references } from "../lib/references";
@@ -93,10 +96,15 @@ interface VerdictChange {
 interface Parts {
   tasks: HistoryStretch[];
   leftOut: HistoryStretch[];
+  how: HistoryView["leftOut"];
 }
-const partsOf = (stretches: readonly HistoryStretch[]): Parts => ({
+const partsOf = ({
+  stretches,
+  leftOut,
+}: Pick<HistoryStretches, "stretches" | "leftOut">): Parts => ({
   tasks: stretches.filter(({ kind }) => kind === "task"),
   leftOut: stretches.filter(({ kind }) => kind === "left-out"),
+  how: leftOut,
 });
 
 function History({ history, error }: { history: HistoryView; error: unknown }) {
@@ -129,6 +137,7 @@ function History({ history, error }: { history: HistoryView; error: unknown }) {
     [siteTasks.data, history],
   );
   const editing = useStretchEditing({ history, clock, drawing, taskNames });
+  const said = useLeftOut(history, drawing);
   const tasks = useMemo((): Choice[] => {
     const ofShift = history.tasks.map(({ id: value, name }) => ({ value, label: name }));
     const known = new Set(ofShift.map(({ value }) => value));
@@ -153,17 +162,26 @@ function History({ history, error }: { history: HistoryView; error: unknown }) {
   const save = useRevisedSave<HistoryStretches, HistoryView>({
     path: () => `/histories/${id}/stretches`,
     schema: HistoryView,
-    toBody: ({ stretches }) => ({ stretches }),
+    toBody: ({ stretches, leftOut }) => ({ stretches, leftOut }),
     onSaved: (view) => void onSaved(view),
+    onError: (error) => {
+      const asked =
+        error instanceof ApiError && error.issues.find(({ path }) => path === "keptReason");
+      said.ask(asked ? doubtSentence(i18n, asked.code, asked.params, locale) : null);
+      if (!asked) showIssuesOn(said.form, i18n)(error);
+    },
   });
-  const sent = (stretches: readonly HistoryStretch[]): HistoryStretches => ({
-    stretches: [...stretches],
-    reason: null,
-  });
+  const sent = (
+    stretches: readonly HistoryStretch[],
+    { leftOut: how, keptReason }: SaidOfLeftOut,
+  ): HistoryStretches => ({ stretches: [...stretches], leftOut: how, keptReason, reason: null });
   const conflict: Conflict<HistoryStretches, HistoryView> | null =
     save.conflict ??
     (drawing.overtaken && canChange
-      ? { mine: sent(drawing.overtaken.stretches), saved: history }
+      ? {
+          mine: sent(drawing.overtaken.stretches, { leftOut: history.leftOut, keptReason: null }),
+          saved: history,
+        }
       : null);
 
   const leftOut = drawing.drawn.filter(({ kind }) => kind === "left-out");
@@ -192,7 +210,7 @@ function History({ history, error }: { history: HistoryView; error: unknown }) {
           lead={
             <>
               {analysis.data ? (
-                <b>{headText(i18n, analysis.data, locale)}</b>
+                <b>{headText(i18n, history, analysis.data, locale)}</b>
               ) : (
                 <span className="loading-line" />
               )}{" "}
@@ -247,7 +265,7 @@ function History({ history, error }: { history: HistoryView; error: unknown }) {
             envelope={envelope.data}
             analysis={analysis.data}
             leftOut={leftOut}
-            summary={summaryText(i18n, clock, analysis.data, leftOut, locale)}
+            summary={summaryText(i18n, history, clock, analysis.data, leftOut, locale)}
             tableLink={
               <a className="link" href="#quarters">
                 {i18n.t("The same as a table")}
@@ -283,14 +301,26 @@ function History({ history, error }: { history: HistoryView; error: unknown }) {
             editing={editing}
             tasks={tasks}
             taskNames={taskNames}
+            leftOut={said}
             isSaving={save.isSaving}
             onSave={() => {
               setVerdictChange(null);
-              save.save(sent(toStretches(drawing.drawn)), drawing.revision);
+              said.read((answer) =>
+                save.save(sent(toStretches(drawing.drawn), answer), drawing.revision),
+              );
             }}
           />
+          {!canChange && history.leftOut && history.covers !== "part" && (
+            <p className="field-note">
+              {i18n.t("The time left out was: {how}.", {
+                how: unaccountedText(i18n, history.leftOut, locale),
+              })}
+            </p>
+          )}
           {/* Once a conflict is settled nothing is left of it to be said. */}
-          {drawing.isChanged && <FormProblem error={save.error} />}
+          {(drawing.isChanged || said.isChanged) && said.doubt === null && (
+            <FormProblem error={save.error} />
+          )}
         </Section>
         {analysis.error && !analysis.data && (
           <Failed onRetry={() => void analysis.refetch()}>
@@ -327,15 +357,26 @@ function History({ history, error }: { history: HistoryView; error: unknown }) {
       {conflict && (
         <ConflictDialog<Parts, HistoryView>
           title={i18n.t("Someone saved these brackets before you")}
-          conflict={{ mine: partsOf(conflict.mine.stretches), saved: conflict.saved }}
-          toBody={({ stretches }) => partsOf(stretches)}
+          conflict={{ mine: partsOf(conflict.mine), saved: conflict.saved }}
+          toBody={partsOf}
           savedBy={({ authorName, savedAt, timeZone }) =>
             [authorName, formatInstant(savedAt, timeZone, locale)].filter(Boolean).join(", ")
           }
-          fields={conflictFields(i18n, clock, { ...taskNames, ...conflict.saved.taskNames })}
+          fields={conflictFields(
+            i18n,
+            clock,
+            { ...taskNames, ...conflict.saved.taskNames },
+            locale,
+          )}
           isSaving={save.isSaving}
-          onSave={({ tasks: chosen, leftOut: without }, revision) =>
-            save.save(sent([...chosen, ...without]), revision)
+          onSave={({ tasks: chosen, leftOut: without, how }, revision) =>
+            save.save(
+              sent([...chosen, ...without], {
+                leftOut: without.length > 0 ? (how ?? { how: "unknown" }) : null,
+                keptReason: conflict.mine.keptReason,
+              }),
+              revision,
+            )
           }
           onKeepSaved={(saved) => {
             save.leaveConflict();
@@ -358,7 +399,12 @@ function intervalText(i18n: I18n, intervalMs: number, locale: Locale): string {
 }
 
 /** What matters of it, in one sentence. */
-function headText(i18n: I18n, { counted, everything }: HistoryAnalysis, locale: Locale): string {
+function headText(
+  i18n: I18n,
+  { leftOut, covers }: HistoryView,
+  { counted, everything }: HistoryAnalysis,
+  locale: Locale,
+): string {
   const parts: string[] = [];
   const duration = formatDuration(counted.durationS / 60, locale);
   parts.push(
@@ -379,17 +425,19 @@ function headText(i18n: I18n, { counted, everything }: HistoryAnalysis, locale: 
       }),
     );
   const outS = everything.durationS - counted.durationS;
+  const out = { duration: lengthText(i18n, outS, locale) };
   if (outS > 0)
     parts.push(
-      i18n.t("{duration} left out", {
-        duration: lengthText(i18n, outS, locale),
-      }),
+      leftOut?.how === "unknown" && covers !== "part"
+        ? i18n.t("{duration} left out, and how that time was is not known", out)
+        : i18n.t("{duration} left out", out),
     );
   return `${parts.join("; ")}.`;
 }
 
 function summaryText(
   i18n: I18n,
+  history: HistoryView,
   clock: HistoryClock,
   analysis: HistoryAnalysis | undefined,
   leftOut: readonly { fromS: number; toS: number }[],
@@ -406,7 +454,7 @@ function summaryText(
   );
   const sentences = [
     i18n.t("Levels of the shift from {from} to {to}.", { from, to }),
-    headText(i18n, analysis, locale),
+    headText(i18n, history, analysis, locale),
     counted.percentilesDb["10"] !== undefined && counted.percentilesDb["90"] !== undefined
       ? i18n.t("For most of the time between {low} and {high} dB.", {
           low: formatLevel(counted.percentilesDb["90"], locale),
@@ -452,6 +500,7 @@ function conflictFields(
   i18n: I18n,
   clock: HistoryClock,
   taskNames: Readonly<Record<string, string>>,
+  locale: Locale,
 ): ConflictField<Parts>[] {
   const list = (stretches: readonly HistoryStretch[]) =>
     stretches.length === 0 ? (
@@ -471,5 +520,10 @@ function conflictFields(
   return [
     { key: "tasks", label: i18n.t("Tasks"), show: ({ tasks }) => list(tasks) },
     { key: "leftOut", label: i18n.t("Left out"), show: ({ leftOut }) => list(leftOut) },
+    {
+      key: "how",
+      label: i18n.t("The time left out was"),
+      show: ({ how }) => (how ? unaccountedText(i18n, how, locale) : i18n.t("none")),
+    },
   ];
 }

@@ -24,14 +24,23 @@ const officerAt = async ({ organizationId }: Site) =>
 /** Ten minutes at 80 dB with one minute of knocks at 110 dB from the fifth on. */
 const knocked = (index: number) => (index >= 300 && index < 360 ? 110 : 80);
 
-async function buildHistory(content = historyText({ levelDb: knocked }), lengthMin = 60) {
+async function buildHistory(
+  content = historyText({ levelDb: knocked }),
+  lengthMin = 60,
+  covers: "shift" | "projected" | "part" = "projected",
+  { taskDb, ...more }: { taskDb?: number; answers?: string[] } = {},
+) {
   const site = await buildSite({ timeZone: "UTC" });
   const client = await officerAt(site);
   const worker = await buildWorker({ site });
   await buildDay(worker, day);
-  const task = await buildTask({ site, name: "Grinding" });
-  await buildShift(worker, { date: day, lengthMin, tasks: [{ taskId: task.id, durationMin: 60 }] });
-  const { historyId } = await importHistory(client, { site, worker, content, covers: "projected" });
+  const task = await buildTask({ site, name: "Grinding", levelDb: taskDb });
+  await buildShift(worker, {
+    date: day,
+    lengthMin,
+    tasks: [{ taskId: task.id, durationMin: lengthMin }],
+  });
+  const { historyId } = await importHistory(client, { site, worker, content, covers, ...more });
   return { site, client, worker, task, historyId, path: `/histories/${historyId}` };
 }
 
@@ -135,7 +144,11 @@ describe("stretches", () => {
       )[0]?.outside_db;
     const before = await level();
     const stretches = [leaveOut, { kind: "task", taskId: task.id, fromS: 0, toS: 300 }];
-    const changed = await client.put(`${path}/stretches`, { stretches }, 1);
+    const changed = await client.put(
+      `${path}/stretches`,
+      { stretches, leftOut: { how: "like-the-rest" } },
+      1,
+    );
     expect(changed.body).toMatchObject({ revision: 2, taskNames: { [task.id]: "Grinding" } });
     // A shift of one hour at 80 dB: LEX,8h is 80 less ten times the logarithm of eight.
     expect(await level()).toBeCloseTo(80 - 10 * Math.log10(8), 9);
@@ -231,6 +244,138 @@ describe("stretches", () => {
         historyId,
       ]),
     ).toHaveLength(1);
+  });
+});
+
+describe("time that is left out is no silence", () => {
+  /** Eight hours at 76.8 dB for 115 min and 96 dB for the rest; LEX without the rest: 76.8 − 6.2 = 70.6. */
+  const loud = (index: number) => (index < 115 ? 76.8 : 96);
+  const rest = { kind: "left-out", fromS: 115 * 60, toS: 480 * 60, reason: "somebody shouted" };
+  const whole = () =>
+    buildHistory(historyText({ count: 480, intervalS: 60, levelDb: loud }), 480, "shift", {
+      taskDb: 60,
+    });
+  const verdictOf = async (worker: { id: string }) =>
+    (
+      await select<{ verdict: string; level: number | null; projected: boolean }>(
+        `SELECT r.verdict_outside AS verdict, r.outside_db AS level, r.is_projected AS projected
+         FROM days d JOIN day_results r ON r.id = d.current_result_id WHERE d.worker_id = $1 AND d.date = $2`,
+        [worker.id, day],
+      )
+    )[0];
+  const why = { keptReason: "the rest of the file is of no use" };
+
+  test("unless somebody says how it was, the day is not assessed, and the run is asked about", async () => {
+    const { client, path, worker } = await whole();
+    expect((await verdictOf(worker))?.verdict).toBe("over");
+    const asked = await client.put(`${path}/stretches`, { stretches: [rest] }, 1);
+    expect([asked.status, asked.body.issues]).toEqual([
+      422,
+      [
+        expect.objectContaining({
+          path: ["keptReason"],
+          code: "shorter-than-shift",
+          params: { coveredMin: 115, shiftMin: 480 },
+        }),
+      ],
+    ]);
+    const kept = await client.put(`${path}/stretches`, { stretches: [rest], ...why }, 1);
+    expect(kept.body).toMatchObject({
+      leftOut: { how: "unknown" },
+      covers: "shift",
+      keptReason: why.keptReason,
+    });
+    expect(await verdictOf(worker)).toMatchObject({ verdict: "not-assessed", level: null });
+    const run = await client.get(`/runs/${kept.body.runId}`);
+    expect(run.body.doubts).toEqual(["shorter-than-shift"]);
+    // Counted again, nothing speaks against the run any more.
+    const again = await client.put(`${path}/stretches`, { stretches: [] }, 2);
+    expect(again.body).toMatchObject({ leftOut: null, keptReason: null });
+    expect((await verdictOf(worker))?.verdict).toBe("over");
+  });
+
+  test("ten minutes of it are asked about as well", async () => {
+    const { client, path, worker } = await buildHistory(
+      historyText({ count: 480, intervalS: 60, levelDb: () => 70 }),
+      480,
+      "shift",
+      { taskDb: 60 },
+    );
+    expect((await verdictOf(worker))?.verdict).toBe("under");
+    const ten = { ...rest, fromS: 0, toS: 600 };
+    const changed = await client.put(`${path}/stretches`, { stretches: [ten] }, 1);
+    expect([changed.status, changed.body.leftOut]).toEqual([200, { how: "unknown" }]);
+    expect((await verdictOf(worker))?.verdict).toBe("not-assessed");
+    // Only how it was is said: the day follows that alone.
+    const leftOut = { how: "quiet", levelDb: 60 };
+    await client.put(`${path}/stretches`, { stretches: [ten], leftOut }, 2);
+    expect(await verdictOf(worker)).toMatchObject({
+      verdict: "under",
+      level: expect.closeTo(10 * Math.log10((470 * 10 ** 7 + 10 * 10 ** 6) / 480), 6),
+    });
+  });
+
+  test("like the rest, what is kept stands for it, and the result is marked as projected", async () => {
+    const { client, path, worker } = await whole();
+    const leftOut = { how: "like-the-rest" };
+    const changed = await client.put(`${path}/stretches`, { stretches: [rest], leftOut }, 1);
+    expect([changed.status, changed.body.leftOut]).toEqual([200, leftOut]);
+    expect(await verdictOf(worker)).toMatchObject({
+      verdict: "under",
+      level: expect.closeTo(76.8, 6),
+      projected: true,
+    });
+  });
+
+  test("what lies outside the shift was none of it", async () => {
+    const { client, path, worker } = await buildHistory(
+      historyText({ time: "05:00:00", count: 540, intervalS: 60, levelDb: () => 70 }),
+      480,
+      "shift",
+      { answers: ["beyond-shift"] },
+    );
+    const before = { ...rest, fromS: 0, toS: 3600 };
+    const changed = await client.put(`${path}/stretches`, { stretches: [before] }, 1);
+    expect(changed.status).toBe(200);
+    expect(await verdictOf(worker)).toMatchObject({
+      verdict: "under",
+      level: expect.closeTo(70, 6),
+    });
+  });
+
+  test("what is kept proves Over by itself", async () => {
+    const { client, path, worker } = await whole();
+    const some = { ...rest, fromS: 0, toS: 115 * 60 };
+    await client.put(`${path}/stretches`, { stretches: [some], ...why }, 1);
+    expect(await verdictOf(worker)).toMatchObject({
+      verdict: "over",
+      level: expect.closeTo(96 + 10 * Math.log10(365 / 480), 6),
+    });
+  });
+
+  test("a correction of the run leaves it as it was said", async () => {
+    const { client, path, worker } = await whole();
+    const { body } = await client.put(`${path}/stretches`, { stretches: [rest], ...why }, 1);
+    const run = await client.get(`/runs/${body.runId}`);
+    const { durationMin, covers, readings } = run.body;
+    const facts = readings.map(
+      ({ octaveBandsDb: _, source: __, ...reading }: Record<string, unknown>) => reading,
+    );
+    const corrected = await client.put(
+      `/runs/${body.runId}`,
+      { durationMin, covers, readings: facts, unusual: "rain", ...why, reason: "it rained" },
+      run.body.revision,
+    );
+    expect([corrected.status, corrected.body.unusual]).toEqual([200, "rain"]);
+    expect((await verdictOf(worker))?.verdict).toBe("not-assessed");
+  });
+
+  test("a quiet level is needed, and a sensible one", async () => {
+    const { client, path } = await whole();
+    for (const leftOut of [{ how: "quiet" }, { how: "quiet", levelDb: 300 }]) {
+      const answer = await client.put(`${path}/stretches`, { stretches: [rest], leftOut }, 1);
+      expect([answer.status, answer.body.issues[0].path]).toEqual([422, ["leftOut", "levelDb"]]);
+    }
   });
 });
 

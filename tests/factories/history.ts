@@ -98,6 +98,7 @@ export async function importHistory(
     instrument?: Instrument;
     content?: string;
     covers?: "shift" | "projected" | "part";
+    answers?: string[];
   } = {},
 ): Promise<Imported> {
   const { site = await buildSite(), content = historyText(), covers = "shift" } = overrides;
@@ -109,7 +110,10 @@ export async function importHistory(
     content,
   });
   const path = `/history-imports/${sent.body.id}`;
-  await client.post(`${path}/read`, { mapping: sent.body.head.proposed });
+  await client.post(`${path}/read`, {
+    mapping: sent.body.head.proposed,
+    answers: overrides.answers ?? [],
+  });
   await workOn(site, sent.body.id);
   const stored = await client.post(`${path}/store`, { covers });
   if (stored.status !== 202) throw new Error(JSON.stringify((await client.get(path)).body));

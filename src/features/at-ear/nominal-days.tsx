@@ -6,6 +6,7 @@ import type { AtEarView, NominalDayAtEar } from "../../../shared/schemas/at-ear"
 import { type DataColumn, DataTable } from "../../components/data-table";
 import { Empty } from "../../components/empty";
 import { useLocale } from "../../lib/i18n";
+import { whichCounts } from "./active-in-noise";
 
 type Locale = ReturnType<typeof useLocale>;
 
@@ -48,7 +49,7 @@ export function NominalDays({ view }: { view: AtEarView }) {
   const active = view.outer === null ? view.inner.active : null;
   const level = (db: number | null, bound: NominalDayAtEar["atEarBound"]) =>
     db === null ? (
-      <span className="not-assessed">{i18n.t("Not assessed")}</span>
+      <span className="not-assessed is-text">{i18n.t("Not assessed")}</span>
     ) : (
       formatLevel(db, locale, bound)
     );
@@ -137,13 +138,14 @@ export function NominalDays({ view }: { view: AtEarView }) {
           {view.limit &&
             (view.limit.kind === "limit"
               ? i18n.t(
-                  "Worn throughout wherever a protector counts as worn. Programme up to: the level under the cup for all that time at which the day reaches the limit of {limit} dB, the part off.",
+                  "Worn throughout wherever a protector counts as worn. Programme up to: the level under the cup for all that time at which the day reaches the limit of {limit} dB.",
                   { limit: formatLimit(view.limit.levelDb, locale) },
                 )
               : i18n.t(
-                  "Worn throughout wherever a protector counts as worn. Programme up to: the level under the cup for all that time at which the day reaches {limit} dB, to which a protector has to bring it down, the part off.",
+                  "Worn throughout wherever a protector counts as worn. Programme up to: the level under the cup for all that time at which the day reaches {limit} dB, to which a protector has to bring it down.",
                   { limit: formatLimit(view.limit.levelDb, locale) },
                 ))}
+          {active && ` ${whichCounts(i18n, view)}`}
         </p>
       )}
     </>

@@ -21,6 +21,7 @@ import {
   type StretchKind,
 } from "./history-stretches";
 import { lengthText, stretchName } from "./history-words";
+import { type LeftOutAnswer, LeftOutForm } from "./left-out-form";
 import type { Drawing } from "./use-drawing";
 
 /** As long as a stretch is at first where nothing says how long. */
@@ -178,6 +179,7 @@ export function StretchList({
   editing,
   tasks,
   taskNames,
+  leftOut,
   onSave,
   isSaving,
 }: {
@@ -187,13 +189,15 @@ export function StretchList({
   editing: Editing;
   tasks: readonly Choice[];
   taskNames: Readonly<Record<string, string>>;
+  leftOut: LeftOutAnswer;
   onSave: () => void;
   isSaving: boolean;
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const canChange = history.can.change === true && !history.isVoid;
-  const { drawn, isChanged } = drawing;
+  const { drawn } = drawing;
+  const isChanged = drawing.isChanged || leftOut.isChanged;
   const rows = drawn.toSorted((a, b) => a.fromS - b.fromS || a.toS - b.toS);
   // A table makes its cells anew where its columns are others, and a button under the hand would be gone.
   const latest = useRef({ editing, taskNames });
@@ -278,7 +282,12 @@ export function StretchList({
               <Button kind="primary" isBusy={isSaving} onClick={onSave}>
                 {i18n.t("Save the brackets")}
               </Button>
-              <TextButton onClick={() => drawing.reset(history)}>
+              <TextButton
+                onClick={() => {
+                  drawing.reset(history);
+                  leftOut.form.reset();
+                }}
+              >
                 {i18n.t("Throw my changes away")}
               </TextButton>
             </>
@@ -308,6 +317,7 @@ export function StretchList({
           onClose={editing.close}
         />
       )}
+      {canChange && leftOut.isAsked && <LeftOutForm answer={leftOut} onSave={onSave} />}
       <DataTable
         caption={i18n.t("Brackets, and what is left out")}
         columns={columns}

@@ -54,6 +54,22 @@ export function boundWord(i18n: I18n, bound: Bound): string {
   }
 }
 
+/** How time that is left out was. */
+export function unaccountedText(
+  i18n: I18n,
+  leftOut: NonNullable<HistoryView["leftOut"]>,
+  locale: Locale,
+): string {
+  switch (leftOut.how) {
+    case "unknown":
+      return i18n.t("not known");
+    case "like-the-rest":
+      return i18n.t("like the rest");
+    case "quiet":
+      return i18n.t("quiet, {level} dB", { level: formatLimit(leftOut.levelDb, locale) });
+  }
+}
+
 export const changeText = (i18n: I18n, { byMin }: ClockChange): string =>
   byMin > 0
     ? i18n.t("clock set forward {minutes} min", { minutes: byMin })

@@ -90,22 +90,17 @@ export function useTypeCheck(workerId: string) {
   });
 }
 
-export interface NewTone {
-  readonly file: File;
+export interface ToneFacts {
   readonly siteId: string;
   readonly toneDb: number;
 }
 
-export function useMeasureTone() {
-  return useMutation({
-    mutationFn: ({ file, siteId, toneDb }: NewTone) => {
-      const body = new FormData();
-      body.set("siteId", siteId);
-      body.set("toneDb", String(toneDb));
-      body.set("file", file);
-      return sendFile("/recordings/tones", { body, schema: CalibrationTone });
-    },
-  });
+export function measureTone(file: File, { siteId, toneDb }: ToneFacts): Promise<CalibrationTone> {
+  const body = new FormData();
+  body.set("siteId", siteId);
+  body.set("toneDb", String(toneDb));
+  body.set("file", file);
+  return sendFile("/recordings/tones", { body, schema: CalibrationTone });
 }
 
 function useOrder<Body>(id: string, order: string) {

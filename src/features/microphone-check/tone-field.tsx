@@ -1,5 +1,5 @@
 import { useLingui } from "@lingui/react";
-import { useState } from "react";
+import { useEffect, useRef, useState } from "react";
 import { formatLevel } from "../../../shared/format/level";
 import { issueText } from "../../../shared/problems/issue-text";
 import { recordingText } from "../../../shared/recordings/recording-text";
@@ -8,11 +8,16 @@ import { Field } from "../../components/form";
 import { Status } from "../../components/status";
 import { ApiError } from "../../lib/api";
 import { useLocale } from "../../lib/i18n";
+import { useMeasuredTone } from "../../lib/measured-tone";
 import { problemText } from "../../lib/problem-text";
 import { ACCEPT } from "./file-fields";
-import { useMeasureTone } from "./queries";
+import { measureTone } from "./queries";
 
-/** A calibrator's tone through one microphone: measured as soon as it is chosen, and not kept. */
+/** What a calibrator can give, dB. */
+const LOWEST_DB = 70;
+const HIGHEST_DB = 130;
+
+/** A calibrator's tone through one microphone: measured as soon as it is chosen, and again for another level. Not kept. */
 export function ToneField({
   label,
   siteId,
@@ -31,37 +36,26 @@ export function ToneField({
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  const measure = useMeasureTone();
-  const [fault, setFault] = useState<string>();
+  const [file, setFile] = useState<File | null>(null);
+  const isLevelRead = toneDb !== null && toneDb >= LOWEST_DB && toneDb <= HIGHEST_DB;
+  const measured = useMeasuredTone(file, isLevelRead ? { siteId, toneDb } : null, measureTone);
+  const tell = useRef(onTone);
+  tell.current = onTone;
+  useEffect(() => tell.current(measured.tone), [measured.tone]);
 
-  function choose(file: File | undefined) {
-    onTone(null);
-    setFault(undefined);
-    if (!file) return;
-    if (toneDb === null) {
-      setFault(i18n.t("Say first what the calibrator gives."));
-      return;
-    }
-    measure.mutate(
-      { file, siteId, toneDb },
-      {
-        onSuccess: onTone,
-        onError: (failure) => {
-          const [issue] = failure instanceof ApiError ? failure.issues : [];
-          setFault(
-            issue
-              ? (recordingText(i18n, issue.code, issue.params) ?? issueText(i18n, issue))
-              : problemText(i18n, failure),
-          );
-        },
-      },
-    );
+  function fault(): string | undefined {
+    if (file && !isLevelRead) return i18n.t("Say first what the calibrator gives.");
+    if (!measured.error) return undefined;
+    const [issue] = measured.error instanceof ApiError ? measured.error.issues : [];
+    return issue
+      ? (recordingText(i18n, issue.code, issue.params) ?? issueText(i18n, issue))
+      : problemText(i18n, measured.error);
   }
   const heard = tone?.channels.flatMap((channel, index) => (channel ? [index + 1] : [])) ?? [];
   return (
     <Field
       label={label}
-      error={fault ?? error}
+      error={fault() ?? (measured.isPending ? undefined : error)}
       note={
         tone
           ? i18n.t("Measured: {level} dB, in channel {channels}.", {
@@ -78,10 +72,9 @@ export function ToneField({
             className="file-input"
             type="file"
             accept={ACCEPT}
-            disabled={measure.isPending}
-            onChange={(event) => choose(event.target.files?.[0])}
+            onChange={(event) => setFile(event.target.files?.[0] ?? null)}
           />
-          {measure.isPending && <Status>{i18n.t("The tone is being measured.")}</Status>}
+          {measured.isPending && <Status>{i18n.t("The tone is being measured.")}</Status>}
         </>
       )}
     </Field>

@@ -89,24 +89,22 @@ export function useSendRecording() {
   return { send, progressPct, cancel };
 }
 
-export interface NewTone {
-  readonly file: File;
+export interface ToneFacts {
   readonly taskId: string;
   readonly toneDb: number;
   readonly frequencyHz: number;
 }
 
-export function useMeasureTone() {
-  return useMutation({
-    mutationFn: ({ file, taskId, toneDb, frequencyHz }: NewTone) => {
-      const body = new FormData();
-      body.set("taskId", taskId);
-      body.set("toneDb", String(toneDb));
-      body.set("frequencyHz", String(frequencyHz));
-      body.set("file", file);
-      return sendFile("/recordings/tones", { body, schema: CalibrationTone });
-    },
-  });
+export function measureTone(
+  file: File,
+  { taskId, toneDb, frequencyHz }: ToneFacts,
+): Promise<CalibrationTone> {
+  const body = new FormData();
+  body.set("taskId", taskId);
+  body.set("toneDb", String(toneDb));
+  body.set("frequencyHz", String(frequencyHz));
+  body.set("file", file);
+  return sendFile("/recordings/tones", { body, schema: CalibrationTone });
 }
 
 function useOrder<Body>(id: string, order: string) {

@@ -7,7 +7,6 @@ import { issueText } from "../../../shared/problems/issue-text";
 import { recordingText } from "../../../shared/recordings/recording-text";
 import { IsoDate } from "../../../shared/schemas/common";
 import {
-  type CalibrationTone,
   RECORDING_LIMIT_BYTES,
   type RecordingView,
   TONE_LIMIT_BYTES,
@@ -31,7 +30,8 @@ import { FormProblem } from "../../components/form-problem";
 import { Status } from "../../components/status";
 import { ApiError } from "../../lib/api";
 import { useLocale } from "../../lib/i18n";
-import { type NewRecording, useMeasureTone, useSendRecording } from "./queries";
+import { useMeasuredTone } from "../../lib/measured-tone";
+import { measureTone, type NewRecording, useSendRecording } from "./queries";
 import { showRecordingIssuesOn } from "./recording-issues";
 import { fullScaleSineDb, megabytes, toneText } from "./recording-words";
 
@@ -55,6 +55,12 @@ const Fields = z
     if (value.isKept && value.keepReason.length < 3) need("keepReason");
     if (value.isKept && value.deleteOn === null) need("deleteOn");
   });
+
+const ToneFacts = z.object({
+  taskId: z.string().min(1),
+  toneDb: z.number().min(70).max(130),
+  frequencyHz: z.number().min(100).max(4000),
+});
 
 const accept = ".wav,audio/wav,audio/x-wav";
 
@@ -91,10 +97,18 @@ export function RecordingForm({
   const values = form.watch();
   const [file, setFile] = useState<File | null>(null);
   const [fileError, setFileError] = useState<string | null>(null);
-  const [tone, setTone] = useState<CalibrationTone | null>(null);
-  const [toneError, setToneError] = useState<string | null>(null);
+  const [toneFile, setToneFile] = useState<File | null>(null);
+  const [isToneMissing, setToneMissing] = useState(false);
   const { send, progressPct, cancel } = useSendRecording();
-  const measure = useMeasureTone();
+  const { taskId: task, toneDb, frequencyHz } = values;
+  const toneFault = toneFile && sizeFault(toneFile, TONE_LIMIT_BYTES);
+  const facts = ToneFacts.safeParse({ taskId: task, toneDb, frequencyHz });
+  const measured = useMeasuredTone(
+    toneFault ? null : toneFile,
+    facts.success ? facts.data : null,
+    measureTone,
+  );
+  const { tone } = measured;
 
   function sizeFault(chosen: File, limitBytes: number): string | null {
     return chosen.size > limitBytes
@@ -105,34 +119,20 @@ export function RecordingForm({
       : null;
   }
 
-  function measureTone(chosen: File | undefined) {
-    setTone(null);
-    measure.reset();
-    const { taskId: task, toneDb, frequencyHz } = form.getValues();
-    if (!chosen) return;
-    const fault = task
-      ? sizeFault(chosen, TONE_LIMIT_BYTES)
-      : i18n.t("Choose the task first, then the tone.");
-    setToneError(fault);
-    if (fault || !task || typeof toneDb !== "number" || typeof frequencyHz !== "number") return;
-    measure.mutate(
-      { file: chosen, taskId: task, toneDb, frequencyHz },
-      {
-        onSuccess: setTone,
-        onError: (error) => {
-          const issue = fileIssue(error);
-          if (issue)
-            setToneError(recordingText(i18n, issue.code, issue.params) ?? issueText(i18n, issue));
-        },
-      },
-    );
+  /** Why there is no tone to be sent. */
+  function toneWord(): string | null {
+    if (toneFault) return toneFault;
+    if (toneFile && !task) return i18n.t("Choose the task first, then the tone.");
+    const issue = fileIssue(measured.error);
+    if (issue) return recordingText(i18n, issue.code, issue.params) ?? issueText(i18n, issue);
+    return isToneMissing && !tone && !measured.isPending ? i18n.t("Measure the tone first.") : null;
   }
 
   const submit = form.handleSubmit((filled) => {
     const fault = file ? sizeFault(file, RECORDING_LIMIT_BYTES) : i18n.t("Choose a file first.");
     setFileError(fault);
     const needsTone = filled.calibration === "tone" && !tone;
-    if (needsTone) setToneError(toneError ?? i18n.t("Measure the tone first."));
+    setToneMissing(needsTone);
     if (!file || fault || needsTone || !filled.taskId) return;
     const calibration: NewRecording["calibration"] =
       filled.calibration === "tone" && tone
@@ -210,7 +210,7 @@ export function RecordingForm({
           <NumberField form={form} name="frequencyHz" label={i18n.t("Frequency")} unit="Hz" />
           <Field
             label={i18n.t("Tone")}
-            error={toneError ?? undefined}
+            error={toneWord() ?? undefined}
             note={
               tone
                 ? toneText(i18n, tone, locale)
@@ -223,16 +223,16 @@ export function RecordingForm({
                 className="file-input"
                 type="file"
                 accept={accept}
-                onChange={(event) => measureTone(event.target.files?.[0])}
+                onChange={(event) => setToneFile(event.target.files?.[0] ?? null)}
               />
             )}
           </Field>
-          {measure.isPending && (
+          {measured.isPending && (
             <p className="form-word">
               <Status>{i18n.t("The tone is being measured.")}</Status>
             </p>
           )}
-          {!fileIssue(measure.error) && <FormProblem error={measure.error} />}
+          {!fileIssue(measured.error) && <FormProblem error={measured.error} />}
         </>
       )}
       <Field
