@@ -128,19 +128,39 @@ async function benchSaving(db: pg.Client, app: pg.Client, organizationId: string
   line("POST /crews/:id/day", ours, bound, "inserting shifts, tasks, results and days alone");
 }
 
-async function benchRecompute(db: pg.Client, organizationId: string): Promise<void> {
+/** Another level of a task: every result that rests on it is another one and has to be written. */
+async function changeLevel(db: pg.Client, taskId: string): Promise<void> {
+  await db.query(
+    `INSERT INTO task_levels (organization_id, task_id, number, effective_from, metric, level_db, lc_minus_la_db, grade, reason)
+     SELECT organization_id, task_id, 2, '2000-01-01', metric, level_db + 0.1, lc_minus_la_db, grade, 'bench' FROM task_levels WHERE task_id = $1 AND number = 1`,
+    [taskId],
+  );
+}
+
+/** Other data of every protector, from long ago on. */
+async function changeProtectors(db: pg.Client, organizationId: string): Promise<void> {
+  await db.query(
+    `INSERT INTO protector_model_revisions (organization_id, model_id, number, effective_from, data, reason)
+     SELECT organization_id, model_id, number + 1, '2000-01-01',
+       data || jsonb_build_object('snrDb', (data->>'snrDb')::float8 - 0.5, 'usRatingDb', (data->>'usRatingDb')::float8 - 0.5, 'mDb', (data->>'mDb')::float8 - 0.5), 'bench'
+     FROM (SELECT DISTINCT ON (model_id) * FROM protector_model_revisions WHERE organization_id = $1 ORDER BY model_id, number DESC) last`,
+    [organizationId],
+  );
+}
+
+async function benchRecompute(
+  db: pg.Client,
+  organizationId: string,
+  name: string,
+  change: (taskId: string) => Promise<void>,
+): Promise<void> {
   const { rows } = await db.query<{ crewId: string; taskId: string }>(
     `SELECT d.crew_id AS "crewId", (SELECT j.task_id FROM job_tasks j JOIN workers w ON w.job_id = j.job_id WHERE w.id = d.worker_id LIMIT 1) AS "taskId"
      FROM days d WHERE d.organization_id = $1 AND d.date > current_date - 300 LIMIT 1`,
     [organizationId],
   );
   const { crewId, taskId } = rows[0]!;
-  // Another level, so that every result is another one and has to be written.
-  await db.query(
-    `INSERT INTO task_levels (organization_id, task_id, number, effective_from, metric, level_db, lc_minus_la_db, grade, reason)
-     SELECT organization_id, task_id, 2, '2000-01-01', metric, level_db + 0.1, lc_minus_la_db, grade, 'bench' FROM task_levels WHERE task_id = $1 AND number = 1`,
-    [taskId],
-  );
+  await change(taskId);
   const marked = await db.query(
     "UPDATE days SET is_stale = TRUE WHERE crew_id = $1 AND date > current_date - 365",
     [crewId],
@@ -168,7 +188,7 @@ async function benchRecompute(db: pg.Client, organizationId: string): Promise<vo
   );
   const boundSeconds = (performance.now() - copied) / 1000;
   await db.query("ROLLBACK");
-  title("Computing a crew's year again");
+  title(name);
   console.log(
     `  ${done} of ${marked.rowCount} days in ${seconds.toFixed(1)} s, ${Math.round(done / seconds)} days/s; writing as many results alone: ${boundSeconds.toFixed(1)} s; × ${(seconds / boundSeconds).toFixed(1)}`,
   );
@@ -178,6 +198,17 @@ const db = await openDatabase();
 const app = await openDatabase(process.env.DATABASE_URL);
 const recent = (await organizations(db)).at(-1)!;
 await benchSaving(db, app, recent.id);
-await benchRecompute(db, recent.id);
+await benchRecompute(
+  db,
+  recent.id,
+  "Computing a crew's year again, after another level",
+  (taskId) => changeLevel(db, taskId),
+);
+await benchRecompute(
+  db,
+  recent.id,
+  "Computing a crew's year again, after other data of its protectors",
+  () => changeProtectors(db, recent.id),
+);
 await app.end();
 await db.end();

@@ -1,4 +1,5 @@
 import { MISSING } from "../../shared/acoustics/history";
+import { toDb } from "../../shared/history-file/cells";
 import type { HistoryMapping } from "../../shared/schemas/history";
 
 /** A day of eighths of seconds, and as much again for lines that turn out to be repeated. */
@@ -40,14 +41,8 @@ type Unit = HistoryMapping["levels"][number]["unit"];
 
 /** Hundredths of a decibel of a value as written; NaN for no sound pressure at all. */
 export function hundredthsOf(value: number, unit: Unit): number {
-  switch (unit) {
-    case "dB":
-      return Math.round(value * 100);
-    case "dB/10":
-      return Math.round(value * 10);
-    case "Pa":
-      return value > 0 ? Math.round(2000 * Math.log10(value / 20e-6)) : Number.NaN;
-  }
+  // Tenths times ten are whole, where a hundred times a tenth of them is not.
+  return unit === "dB/10" ? Math.round(value * 10) : Math.round(100 * toDb(value, unit));
 }
 
 /** No level that an instrument writes for a worker's noise is outside this, hundredths of a decibel. */

@@ -471,3 +471,28 @@ describe("large files", () => {
     ]);
   });
 });
+
+describe("marks at the range", () => {
+  const marked = (mark: (index: number) => string) =>
+    `time,LAeq\n${rows(20, (index) => `2026-03-02 ${second(index)},${mark(index)}`)}\n`;
+
+  test.each(["OL", "OVL", "OVR", "over", ">140"])("%s is known as over the range", async (mark) => {
+    const { report, found } = await read(marked((index) => (index === 4 ? mark : "84.1")));
+    expect(report.channels[0]?.overRange).toBe(1);
+    expect(found).toEqual(["asked over-range 6"]);
+  });
+
+  test("a sign after numbers is told once, with its count, until somebody says what it means", async () => {
+    const content = marked((index) => (index % 2 === 0 ? "104.2*" : "84.1"));
+    const { report, found, grid } = await read(content);
+    expect(found).toEqual(["refused levels-with-a-sign 2"]);
+    expect(report.issues[0]).toMatchObject({
+      column: "LAeq",
+      params: { text: "104.2*", sign: "*", count: 10 },
+    });
+    expect(grid).toBeNull();
+    const said = await read(content, { mapping: { overRange: ["*"] } });
+    expect(said.report.channels[0]?.overRange).toBe(10);
+    expect(said.found).toEqual(["asked over-range 2"]);
+  });
+});

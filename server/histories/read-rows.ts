@@ -7,6 +7,7 @@ import {
   readElapsed,
   readTime,
   readValue,
+  signAfter,
   splitLine,
 } from "../../shared/history-file/cells";
 import type { HistoryMapping } from "../../shared/schemas/history";
@@ -45,6 +46,8 @@ export interface ChannelMarks {
   strange: number;
   firstStrangeLine: number;
   strangest: number;
+  /** Numbers with a sign after them that nobody has explained. */
+  signed: { line: number; text: string; sign: string; count: number } | null;
   rounded: number;
   lowest: number;
   highest: number;
@@ -108,6 +111,7 @@ export class RowReader {
       strange: 0,
       firstStrangeLine: 0,
       strangest: 0,
+      signed: null,
       rounded: 0,
       lowest: Number.POSITIVE_INFINITY,
       highest: Number.NEGATIVE_INFINITY,
@@ -218,6 +222,11 @@ export class RowReader {
 
   /** What was left unread: at the end of a file its foot, anywhere else a fault. */
   finish(): void {
+    this.marks.forEach(({ signed }, index) => {
+      if (!signed) return;
+      const { line, ...params } = signed;
+      this.issues.add("refused", "levels-with-a-sign", line, params, this.columnName(index));
+    });
     this.mapping.levels.forEach(({ unit }, index) => {
       if (this.highest[index]! < this.lowest[index]!) return;
       const marks = this.marks[index]!;
@@ -269,6 +278,7 @@ export class RowReader {
         return UNDER;
       }
       case "unreadable":
+        if (this.isSigned(cell, index, line)) return MISSING;
         this.issues.add(
           "refused",
           "not-a-level",
@@ -282,6 +292,16 @@ export class RowReader {
         return this.believe(hundredths, value, index, line);
       }
     }
+  }
+
+  /** Thousands of lines may have the same sign: it is told once. */
+  private isSigned(cell: string, index: number, line: number): boolean {
+    const sign = signAfter(cell);
+    if (sign === null) return false;
+    const marks = this.marks[index]!;
+    marks.signed ??= { line, text: cell.slice(0, 40), sign, count: 0 };
+    marks.signed.count += 1;
+    return true;
   }
 
   private markMissing(index: number, line: number): number {

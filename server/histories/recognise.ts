@@ -3,6 +3,7 @@ import {
   readDate,
   readTime,
   readValue,
+  signAfter,
   splitLine,
 } from "../../shared/history-file/cells";
 import type { HistoryChannel, HistoryMapping, ProposedMapping } from "../../shared/schemas/history";
@@ -58,7 +59,9 @@ function shapeOf(
   if (/:/.test(cell) && readTime(cell)) return "time";
   const value = readValue(cell, { decimal, overRange: [], underRange: [] });
   if (typeof value === "number") return "number";
-  return value === "unreadable" ? "text" : "mark";
+  if (value !== "unreadable") return "mark";
+  // A level with the instrument's own sign after it, as "104.2*".
+  return signAfter(cell) === null ? "text" : "mark";
 }
 
 function delimiterOf(lines: readonly string[]): Delimiter {

@@ -36,6 +36,8 @@ export async function facedShifts(runs: readonly FacingRun[]): Promise<(FacedShi
        FROM (SELECT * FROM recorded UNION ALL SELECT * FROM usual) f JOIN x ON x.place = f.place)
      SELECT to_char(f.starts_at AT TIME ZONE f.time_zone, 'HH24:MI') AS "from", to_char(f.ends_at AT TIME ZONE f.time_zone, 'HH24:MI') AS "to",
        (extract(epoch FROM f.ends_at - f.starts_at) / 60)::float8 AS "shiftMin", f.inside AS "insideMin",
+       CASE WHEN f.back_at IS NOT NULL THEN (extract(epoch FROM f.out_at - f.starts_at) / 60)::float8 END AS "startOffMin",
+       CASE WHEN f.back_at IS NOT NULL THEN (extract(epoch FROM f.back_at - f.ends_at) / 60)::float8 END AS "endOffMin",
        f.count > 1 AND f.inside IS NULL AND f.shift_id IS NULL AS "isOneOfSeveral"
      FROM x LEFT JOIN LATERAL (SELECT * FROM faced t WHERE t.place = x.place ORDER BY t.inside DESC NULLS LAST, t.starts_at LIMIT 1) f ON TRUE
      ORDER BY x.place`,

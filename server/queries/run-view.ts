@@ -1,5 +1,6 @@
 import type { z } from "zod";
 import type { RunFilter, RunPage, RunView } from "../../shared/schemas/run";
+import { leftOutIn, type StoredLeftOut } from "../histories/left-out";
 import { decodeCursor, pageFrom } from "../lib/cursor";
 import { rows } from "../lib/db";
 import { type Actor, abilities, visible } from "../lib/policy";
@@ -7,14 +8,17 @@ import { isoInstant } from "../lib/sql-instant";
 import type { Run } from "../models/instrument";
 import { runPolicy } from "../policies";
 
-type Found = Omit<RunView, "can" | "recordedAt"> & { recordedAt: Date };
+type Found = Omit<RunView, "can" | "recordedAt" | "leftOut"> & {
+  recordedAt: Date;
+  leftOut: StoredLeftOut | null;
+};
 
 const SELECT_RUNS = `SELECT r.id, r.site_id AS "siteId", r.instrument_id AS "instrumentId", i.name AS "instrumentName", i.serial_number AS "serialNumber",
     r.worker_id AS "workerId", w.name AS "workerName", a.name AS "areaName", r.task_id AS "taskId", t.name AS "taskName", r.survey_id AS "surveyId",
     y.name AS "surveyName", r.place, r.date::text AS date, r.shift_id AS "shiftId", r.is_out AS "isOut", ${isoInstant("lower(r.span)")} AS "outAt",
     ${isoInstant("upper(r.span)")} AS "backAt", r.is_void AS "isVoid", r.revision,
     v.duration_min AS "durationMin", v.check_before_db AS "checkBeforeDb", v.check_after_db AS "checkAfterDb", v.covers, v.kept_reason AS "keptReason",
-    v.doubts, v.unusual, u.name AS "authorName", v.created_at AS "recordedAt",
+    v.doubts, v.left_out AS "leftOut", v.unusual, u.name AS "authorName", v.created_at AS "recordedAt",
     (SELECT h.id FROM time_histories h WHERE h.run_id = r.id AND NOT h.is_void) AS "historyId",
     coalesce((SELECT json_agg(json_build_object('id', f.id, 'name', f.name, 'mediaType', f.media_type) ORDER BY x.added_at, f.id)
      FROM run_files x JOIN files f ON f.id = x.file_id WHERE x.run_id = r.id), '[]') AS files,
@@ -28,8 +32,9 @@ const SELECT_RUNS = `SELECT r.id, r.site_id AS "siteId", r.instrument_id AS "ins
   LEFT JOIN workers w ON w.id = r.worker_id LEFT JOIN areas a ON a.id = r.area_id LEFT JOIN tasks t ON t.id = r.task_id
   LEFT JOIN surveys y ON y.id = r.survey_id LEFT JOIN users u ON u.id = v.author_id`;
 
-const present = (actor: Actor, { recordedAt, ...run }: Found): RunView => ({
+const present = (actor: Actor, { recordedAt, leftOut, ...run }: Found): RunView => ({
   ...run,
+  leftOut: (leftOut && leftOutIn(leftOut, null)) ?? undefined,
   recordedAt: recordedAt.toISOString(),
   can: abilities(runPolicy, actor, run),
 });

@@ -299,10 +299,9 @@ export function resultOf(
   const plan = planOf(strategy, target, samplesDb, groupSize);
   const wantedCount = Math.max(target.samplesCount, plan.sampleCount);
   const missingCount = Math.max(0, wantedCount - samplesDb.length);
-  const isScattered =
-    strategy !== "task" &&
-    samplesDb.length >= 3 &&
-    jobSamplingUncertaintyDb(samplesDb) > LARGE_SCATTER_DB;
+  const scatterDb =
+    strategy !== "task" && samplesDb.length >= 3 ? jobSamplingUncertaintyDb(samplesDb) : null;
+  const isScattered = scatterDb !== null && scatterDb > LARGE_SCATTER_DB;
   const isSpread = plan.reasons.some(({ code }) => code === "large-spread");
   const withLc = counted.filter(({ lceqDb }) => lceqDb !== null);
   const lc = energyMeanOf(withLc.map(({ lceqDb }) => lceqDb));
@@ -325,6 +324,7 @@ export function resultOf(
     wantedCount,
     levelDb: samplesDb.length === 0 ? null : energyMeanDb(samplesDb),
     rangeDb: spreadDb(samplesDb),
+    scatterDb,
     missingCount,
     asksFor: isScattered
       ? "plan-anew"

@@ -38,8 +38,27 @@ const MISSING_MARKS = new Set([
   "…",
   "...",
 ]);
-const OVER_MARKS = /^(>.*|ol|ovl|ovld|over|overload|overrange|over range|#over)$/i;
-const UNDER_MARKS = /^(<.*|ul|ur|under|underrange|under range|#under)$/i;
+const OVER_MARKS = /^(>.*|ol|ovl|ovld|ovr|over|overload|overrange|over range|#over)$/i;
+const UNDER_MARKS = /^(<.*|ul|ur|unr|under|underrange|under range|#under)$/i;
+/** What of these is told to whoever maps a file. */
+export const KNOWN_OVER_MARKS = ["OL", "OVL", "OVR", "OVER", "OVERLOAD"] as const;
+export const KNOWN_UNDER_MARKS = ["UL", "UR", "UNR", "UNDER"] as const;
+
+/** A number with a sign after it, as an instrument marks some of its levels: "104.2*". */
+const SIGNED = /^[+-]?[\d.,]+\s*([^\s\w.,+%-])$/;
+export const signAfter = (cell: string): string | null => SIGNED.exec(cell.trim())?.[1] ?? null;
+
+/** Decibels of a value as written; NaN for no sound pressure at all. */
+export function toDb(value: number, unit: "dB" | "dB/10" | "Pa"): number {
+  switch (unit) {
+    case "dB":
+      return value;
+    case "dB/10":
+      return value / 10;
+    case "Pa":
+      return value > 0 ? 20 * Math.log10(value / 20e-6) : Number.NaN;
+  }
+}
 
 export type Value = number | "missing" | "over" | "under" | "unreadable";
 
@@ -52,8 +71,11 @@ export interface ValueMarks {
 /** A level's cell: a number with the file's decimal mark and nothing else but a unit, or a mark for none. */
 export function readValue(cell: string, { decimal, overRange, underRange }: ValueMarks): Value {
   const text = cell.trim();
-  if (overRange.includes(text)) return "over";
-  if (underRange.includes(text)) return "under";
+  const sign = signAfter(text);
+  const isMarked = (marks: readonly string[]) =>
+    marks.includes(text) || (sign !== null && marks.includes(sign));
+  if (isMarked(overRange)) return "over";
+  if (isMarked(underRange)) return "under";
   if (MISSING_MARKS.has(text.toLowerCase())) return "missing";
   if (OVER_MARKS.test(text)) return "over";
   if (UNDER_MARKS.test(text)) return "under";

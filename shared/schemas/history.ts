@@ -176,6 +176,8 @@ export const HistoryImportView = z.object({
       to: z.string(),
       shiftMin: z.number(),
       insideMin: z.number().nullable(),
+      startOffMin: z.number().nullish(),
+      endOffMin: z.number().nullish(),
     })
     .nullable(),
   historyId: z.uuid().nullable(),

@@ -102,6 +102,14 @@ describe("a run and the shift that it speaks for", () => {
     expect(likelyCovers({ ...eight, insideMin: 60 }, 60)).toBe("part");
     expect(likelyCovers({ ...eight, insideMin: 0 }, 60)).toBe("part");
     expect(likelyCovers(null, 480)).toBeNull();
+    // Half an hour later than the shift at both ends: its clock may be wrong, or it is another's shift.
+    const offset = { ...eight, insideMin: 450 };
+    expect(likelyCovers({ ...offset, startOffMin: 30, endOffMin: 30 }, 480)).toBeNull();
+    expect(likelyCovers({ ...offset, startOffMin: -30, endOffMin: -30 }, 480)).toBeNull();
+    // Put on early and taken off late; or a little late at both ends.
+    const whole = { ...eight, insideMin: 480 };
+    expect(likelyCovers({ ...whole, startOffMin: -20, endOffMin: 20 }, 520)).toBe("shift");
+    expect(likelyCovers({ ...offset, startOffMin: 8, endOffMin: 8 }, 480)).toBe("shift");
   });
 });
 

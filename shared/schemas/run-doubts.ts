@@ -56,6 +56,9 @@ export interface FacedShift {
   readonly shiftMin: number;
   /** Minutes of the run that lie in it; null where only the run's length is known. */
   readonly insideMin: number | null;
+  /** Minutes by which the run begins after the shift does, and ends after it; less than 0: before. */
+  readonly startOffMin?: number | null;
+  readonly endOffMin?: number | null;
 }
 
 export interface DoubtfulFacts {
@@ -133,12 +136,23 @@ export function shiftDoubt({
     : null;
 }
 
-/** What a run most likely covers; null where no shift is known to judge by. */
+/** A run that is off its shift by no more than this at an end was put on or taken off in the ordinary way. No source. */
+export const ORDINARILY_OFF_MIN = 10;
+
+/** At one end a part of the shift is missing, at the other the run goes on beyond it. */
+const isOffset = ({ startOffMin = null, endOffMin = null }: FacedShift): boolean =>
+  startOffMin !== null &&
+  endOffMin !== null &&
+  Math.min(Math.abs(startOffMin), Math.abs(endOffMin)) > ORDINARILY_OFF_MIN &&
+  Math.sign(startOffMin) === Math.sign(endOffMin);
+
+/** What a run most likely covers; null where no shift is known to judge by, or where its clock may be wrong. */
 export function likelyCovers(
   shift: FacedShift | null,
   durationMin: number,
 ): DoubtfulFacts["covers"] | null {
   if (shift === null) return null;
+  if (shift.insideMin !== 0 && isOffset(shift)) return null;
   return shiftDoubt({ covers: "shift", shift, durationMin }) === null ? "shift" : "part";
 }
 

@@ -1,6 +1,6 @@
 import { z } from "zod";
 import { Can, IsoDate, Name, PageQuery, pageOf, Reason } from "./common";
-import { OctaveBands, ReadingFacts, Settings } from "./evaluation";
+import { LeftOutInput, OctaveBands, ReadingFacts, Settings } from "./evaluation";
 import { findRunDoubts, RUN_DOUBTS } from "./run-doubts";
 
 export const InstrumentInput = z.object({
@@ -127,6 +127,8 @@ export const RunView = Facts.omit({ durationMin: true, readings: true }).extend(
   durationMin: z.number().nullable(),
   /** None where it is out, or where all that it logged is its time history. */
   readings: z.array(StoredReading),
+  /** What is left out of its history; absent: nothing. */
+  leftOut: LeftOutInput.optional(),
   /** What speaks against it and was kept all the same. */
   doubts: z.array(z.enum(RUN_DOUBTS)),
   historyId: z.uuid().nullable(),

@@ -222,7 +222,10 @@ export const TargetResult = z.object({
   samplesCount: z.number(),
   wantedCount: z.number(),
   levelDb: z.number().nullable(),
+  /** Greatest less least. */
   rangeDb: z.number().nullable(),
+  /** Standard uncertainty u1 of the samples of a job or of full days; null: of a task, or too few. */
+  scatterDb: z.number().nullable(),
   /** Samples still to take. */
   missingCount: z.number(),
   /** Code of what the standard asks for next; null: enough. */

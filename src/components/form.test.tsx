@@ -187,3 +187,29 @@ test("a busy button refuses a second press and keeps the focus", async () => {
   expect(onSubmit).not.toHaveBeenCalled();
   expect(document.activeElement).toBe(button);
 });
+
+function Late() {
+  const form = useSchemaForm(z.object({ levelDb: z.number().nullable() }), {
+    mode: "onSubmit",
+    defaultValues: { levelDb: null },
+  });
+  return <NumberField form={form} name="levelDb" label="Level" />;
+}
+
+test("what can't be read is said on leaving the field, also in a form that says all else when it is sent", async () => {
+  const user = userEvent.setup();
+  render(
+    <TestLanguage>
+      <Late />
+    </TestLanguage>,
+  );
+  const field = screen.getByLabelText("Level");
+  await user.type(field, "86,7");
+  expect(field).not.toHaveAttribute("aria-invalid");
+  await user.tab();
+  expect(field).toHaveValue("86,7");
+  expect(field).toHaveAccessibleDescription(/can be read in two ways/);
+  await user.clear(field);
+  await user.type(field, "86.7");
+  expect(field).not.toHaveAttribute("aria-invalid");
+});

@@ -338,7 +338,7 @@ export function TextAreaField<Values extends FieldValues, Output>({
 
 /**
  * A field whose text is read by a parser. What can't be read stays in the field as typed, and in the form as
- * unreadable: it is neither dropped nor taken for empty.
+ * unreadable: it is neither dropped nor taken for empty. It is said on leaving the field, whenever the form says the rest.
  */
 function ParsedField<Values extends FieldValues, Output, Value>({
   parse,
@@ -354,9 +354,14 @@ function ParsedField<Values extends FieldValues, Output, Value>({
   kind: "number" | "date" | "time";
   inputProps?: InputHTMLAttributes<HTMLInputElement>;
 }) {
+  const { i18n } = useLingui();
   const { field, error } = useField(props);
   const [typed, setTyped] = useState<{ text: string; value: unknown } | null>(null);
   const stored: unknown = field.value;
+  const fault =
+    stored instanceof Unreadable && typed === null
+      ? issueText(i18n, { code: stored.code, params: {} })
+      : undefined;
   const written =
     stored instanceof Unreadable
       ? stored.text
@@ -365,7 +370,7 @@ function ParsedField<Values extends FieldValues, Output, Value>({
         : write(stored as Value);
   const text = typed && Object.is(typed.value, stored) ? typed.text : written;
   return (
-    <Field {...props} error={error}>
+    <Field {...props} error={error ?? fault}>
       {(wires) => (
         <input
           className={`input is-${kind}`}

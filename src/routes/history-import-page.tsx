@@ -1,3 +1,4 @@
+import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { useEffect, useRef, useState } from "react";
@@ -5,8 +6,9 @@ import { useParams } from "react-router-dom";
 import { formatInstant } from "../../shared/format/date";
 import { formatDuration } from "../../shared/format/duration";
 import { formatNumber } from "../../shared/format/number";
+import type { Locale } from "../../shared/i18n";
 import type { HistoryHead, HistoryImportView } from "../../shared/schemas/history";
-import { likelyCovers, shiftDoubt } from "../../shared/schemas/run-doubts";
+import { type FacedShift, likelyCovers, shiftDoubt } from "../../shared/schemas/run-doubts";
 import { Button, ButtonLink } from "../components/button";
 import { Failed } from "../components/failed";
 import { Field } from "../components/form";
@@ -266,6 +268,23 @@ function Mapping({ view, head }: { view: HistoryImportView; head: HistoryHead })
   );
 }
 
+/** What of a shift is missing, and what lies beyond it, at either end. */
+function offText(i18n: I18n, shift: FacedShift, locale: Locale): string[] {
+  const { startOffMin = null, endOffMin = null, insideMin } = shift;
+  if (startOffMin === null || endOffMin === null || insideMin === 0) return [];
+  const length = (minutes: number) => ({ duration: formatDuration(Math.abs(minutes), locale) });
+  return [
+    startOffMin >= LEAST_TOLD_MIN &&
+      i18n.t("{duration} are missing at its beginning.", length(startOffMin)),
+    startOffMin <= -LEAST_TOLD_MIN &&
+      i18n.t("{duration} lie before it begins.", length(startOffMin)),
+    endOffMin <= -LEAST_TOLD_MIN && i18n.t("{duration} are missing at its end.", length(endOffMin)),
+    endOffMin >= LEAST_TOLD_MIN && i18n.t("{duration} lie after its end.", length(endOffMin)),
+  ].filter((text) => text !== false);
+}
+
+const LEAST_TOLD_MIN = 1;
+
 function StoreForm({ view }: { view: HistoryImportView }) {
   const { i18n } = useLingui();
   const locale = useLocale();
@@ -309,11 +328,14 @@ function StoreForm({ view }: { view: HistoryImportView }) {
         isGroup
         note={
           shift
-            ? i18n.t("{duration} long; the shift lasts from {from} to {to}.", {
-                duration: formatDuration(durationMin, locale),
-                from: shift.from,
-                to: shift.to,
-              })
+            ? [
+                i18n.t("{duration} long; the shift lasts from {from} to {to}.", {
+                  duration: formatDuration(durationMin, locale),
+                  from: shift.from,
+                  to: shift.to,
+                }),
+                ...offText(i18n, shift, locale),
+              ].join(" ")
             : i18n.t("No shift of the worker is known for that day.")
         }
         error={isMissing && covers === null ? i18n.t("Choose what it covers.") : undefined}

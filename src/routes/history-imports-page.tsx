@@ -32,15 +32,15 @@ interface NewImportValues {
   workerId: string | null;
 }
 
-/** Where a file is that somebody sent in before. */
-function whereIs(error: unknown): string | null {
+/** Where a file is that somebody sent in before, and whether anything of it is stored. */
+function whereIs(error: unknown): { to: string; isStored: boolean } | null {
   if (!(error instanceof ApiError) || error.code !== "same-file") return null;
   const { historyId, importId } = error.body as {
     historyId?: string | null;
     importId?: string | null;
   };
-  if (historyId) return paths.history(historyId);
-  return importId ? paths.historyImport(importId) : null;
+  if (historyId) return { to: paths.history(historyId), isStored: true };
+  return importId ? { to: paths.historyImport(importId), isStored: false } : null;
 }
 
 /** A file of levels is sent in here; what came in before stands beneath. */
@@ -230,8 +230,14 @@ function NewImportForm() {
       </Field>
       {link ? (
         <p className="field-error" role="alert">
-          {i18n.t("This file has been sent in already.")}{" "}
-          <TextLink to={link}>{i18n.t("Look at it")}</TextLink>
+          {link.isStored
+            ? i18n.t("This file has been sent in already.")
+            : i18n.t(
+                "This file was sent in before, and nothing of it is stored yet. Go on with it there, or cancel that import and send the file again.",
+              )}{" "}
+          <TextLink to={link.to}>
+            {link.isStored ? i18n.t("Look at it") : i18n.t("Go to that import")}
+          </TextLink>
         </p>
       ) : (
         !isAborted && !isOfFile && <FormProblem error={start.error} />

@@ -171,6 +171,7 @@ export function Component() {
               rows={inDoubt}
               rowKey={({ runId }) => runId}
               isTwoLine
+              stacksOnPhone
               columns={[
                 {
                   id: "date",
@@ -224,6 +225,7 @@ export function Component() {
               rows={history.data?.rows ?? []}
               rowKey={(row) => row.id}
               isTwoLine
+              stacksOnPhone
               empty={<Empty title={i18n.t("No calibration is on record yet.")} />}
               columns={[
                 {
@@ -297,6 +299,7 @@ export function Component() {
             rows={runs.data?.pages.flatMap((page) => page.rows) ?? []}
             rowKey={(run) => run.id}
             isTwoLine
+            stacksOnPhone
             more={{
               hasMore: runs.hasNextPage,
               isLoading: runs.isFetchingNextPage,

@@ -2,26 +2,52 @@ import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { useRef, useState } from "react";
 import { useSearchParams } from "react-router-dom";
+import { z } from "zod";
 import { formatDay } from "../../shared/format/date";
 import { IsoDate } from "../../shared/schemas/common";
 import { localDate } from "../../shared/time/zone";
 import { ButtonLink } from "../components/button";
-import { DateInput } from "../components/date-input";
 import { Empty } from "../components/empty";
 import { Failed } from "../components/failed";
 import { FilterRow, FilterSelect } from "../components/filter-row";
+import { DateField, useSchemaForm } from "../components/form";
 import { TextLink } from "../components/link";
 import { Folio, PageBody, PageHead } from "../components/page";
 import { OutingRow, type OutingRowHandle } from "../features/outings/outing-row";
 import { outingQueries } from "../features/outings/queries";
 import { findBySerial } from "../features/outings/row-keys";
-import { useUser } from "../features/session/session";
+import { hasRole, useUser } from "../features/session/session";
 import { useLocale } from "../lib/i18n";
 import { references } from "../lib/references";
 import { paths } from "../paths";
 import { MeasuringWays } from "./measuring-frame";
 import "../styles/register.css";
 import "../styles/outings.css";
+
+const DayFields = z.object({ date: IsoDate });
+
+/** The day that is shown, typed as everywhere that measuring asks for one; taken with Enter or on leaving the field. */
+function DayFilter({
+  date,
+  today,
+  onChoose,
+}: {
+  date: string;
+  today: string;
+  onChoose: (date: string) => void;
+}) {
+  const { i18n } = useLingui();
+  const form = useSchemaForm(DayFields, { keepAs: null, defaultValues: { date } });
+  const take = form.handleSubmit((filled) => {
+    if (filled.date > today) form.setError("date", { message: i18n.t("This day is still ahead.") });
+    else if (filled.date !== date) onChoose(filled.date);
+  });
+  return (
+    <form className="filter day-filter" noValidate onSubmit={take} onBlur={() => void take()}>
+      <DateField form={form} name="date" label={i18n.t("Day")} />
+    </form>
+  );
+}
 
 /** One page for the morning and the evening: which instrument is with whom, and what came back. */
 export function Component() {
@@ -97,7 +123,11 @@ export function Component() {
               </>
             )
           }
-          actions={<ButtonLink to={paths.sample}>{i18n.t("Sample by hand")}</ButtonLink>}
+          actions={
+            hasRole(user, "officer") && (
+              <ButtonLink to={paths.sample}>{i18n.t("Sample by hand")}</ButtonLink>
+            )
+          }
         />
         <FilterRow label={i18n.t("What is shown")}>
           {user.sites.length > 1 && (
@@ -108,16 +138,12 @@ export function Component() {
               onChange={(id) => narrow("site", id)}
             />
           )}
-          <span className="filter">
-            <label htmlFor="outings-date">{i18n.t("Day")}</label>
-            <DateInput
-              id="outings-date"
-              key={date}
-              value={date}
-              max={today}
-              onChoose={(chosen) => narrow("date", chosen === today ? null : chosen)}
-            />
-          </span>
+          <DayFilter
+            key={date}
+            date={date}
+            today={today}
+            onChoose={(chosen) => narrow("date", chosen === today ? null : chosen)}
+          />
         </FilterRow>
         {board.data?.can.change && (
           <form

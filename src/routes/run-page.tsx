@@ -25,6 +25,7 @@ import { FormProblem } from "../components/form-problem";
 import { TextLink } from "../components/link";
 import { COMMON_SETTINGS } from "../components/meter-settings";
 import { Folio, MarginNote, PageBody, PageHead, Section } from "../components/page";
+import { unaccountedText } from "../features/histories/history-words";
 import { instrumentQueries } from "../features/instruments/queries";
 import { runQueries, useRecordRun, useRunSaved } from "../features/runs/queries";
 import {
@@ -338,6 +339,11 @@ function Run({ run, instruments }: { run: RunView; instruments: readonly Instrum
                       : i18n.t("a sample of its task"),
                 })
               )}{" "}
+              {run.leftOut &&
+                i18n.t("{duration} of its history are left out: {how}.", {
+                  duration: formatDuration(run.leftOut.minutes, locale),
+                  how: unaccountedText(i18n, run.leftOut, locale),
+                })}{" "}
               {[
                 run.taskName,
                 run.place ?? run.areaName,
@@ -363,13 +369,16 @@ function Run({ run, instruments }: { run: RunView; instruments: readonly Instrum
             ))
           }
         />
-        <DataTable
-          caption={i18n.t("Readings of this run")}
-          columns={columns}
-          rows={run.readings}
-          rowKey={({ settings }) => JSON.stringify(settings)}
-          empty={<Empty title={i18n.t("No reading was typed for this run.")} />}
-        />
+        <div className="figures-frame">
+          <DataTable
+            stacksOnPhone
+            caption={i18n.t("Readings of this run")}
+            columns={columns}
+            rows={run.readings}
+            rowKey={({ settings }) => JSON.stringify(settings)}
+            empty={<Empty title={i18n.t("No reading was typed for this run.")} />}
+          />
+        </div>
         <p className="after-table">
           {run.workerId && !run.isVoid && !run.isOut && run.taskId === null && (
             <TextLink to={paths.result(run.workerId, run.date)}>

@@ -210,6 +210,7 @@ export function Component() {
           rows={rows}
           rowKey={({ id }) => id}
           isTwoLine
+          stacksOnPhone
           state={list.isSuccess ? "ready" : list.isError ? "failed" : "loading"}
           error={list.error}
           onRetry={() => void list.refetch()}

@@ -246,6 +246,7 @@ describe("what a survey comes to", () => {
     expect(body.results[0]).toMatchObject({
       samplesCount: 3,
       rangeDb: 4,
+      scatterDb: null,
       // 9.3: three samples 3 dB apart or more want three more.
       wantedCount: 6,
       missingCount: 3,

@@ -6,6 +6,7 @@ import { formatLevel, formatLimit } from "../../../shared/format/level";
 import { ruleSetVersion } from "../../../shared/rule-sets";
 import type { IssueSlip } from "../../../shared/schemas/choice";
 import { DropStrip } from "../../components/drop-strip";
+import { levelX, STRIP_FROM_DB, STRIP_TO_DB } from "../../components/drop-strip-geometry";
 import { ProtectorWord } from "../../components/protector-word";
 import { bandBelow } from "../../components/strip-of-day";
 import { useLocale } from "../../lib/i18n";
@@ -56,6 +57,7 @@ export function IssueSlipPage({ slip, issuedBy }: { slip: IssueSlip; issuedBy: s
               <th scope="col">{i18n.t("Protector, and where to wear it")}</th>
               <th scope="col">
                 {i18n.t("At the ear while worn, and outside")} <i>dB</i>
+                <Scale />
               </th>
               <th scope="col">{i18n.t("While worn")}</th>
             </tr>
@@ -167,6 +169,30 @@ export function IssueSlipPage({ slip, issuedBy }: { slip: IssueSlip; issuedBy: s
   }
 }
 
+const STRIP_WIDTH_PX = 290;
+
+/** The numbers of the strips' scale, as far apart as on them. */
+function Scale() {
+  const levelsDb = [];
+  for (let levelDb = STRIP_FROM_DB; levelDb <= STRIP_TO_DB; levelDb += 10) levelsDb.push(levelDb);
+  return (
+    <svg className="slip-scale" width={STRIP_WIDTH_PX} height={16} aria-hidden="true">
+      {levelsDb.map((levelDb) => (
+        <text
+          key={levelDb}
+          x={levelX(levelDb, STRIP_WIDTH_PX)}
+          y={13}
+          textAnchor={
+            levelDb === STRIP_FROM_DB ? "start" : levelDb === STRIP_TO_DB ? "end" : "middle"
+          }
+        >
+          {levelDb}
+        </text>
+      ))}
+    </svg>
+  );
+}
+
 function Strip({ device, actionDb }: { device: Device; actionDb: number | null }) {
   const { i18n } = useLingui();
   const locale = useLocale();
@@ -177,7 +203,7 @@ function Strip({ device, actionDb }: { device: Device; actionDb: number | null }
     <>
       <DropStrip
         variant="print"
-        widthPx={240}
+        widthPx={STRIP_WIDTH_PX}
         k={1.5}
         isHidden
         outsideDb={outsideDb}

@@ -506,6 +506,13 @@ function readingsOf(
         id: replaced?.readingId ?? `typed ${at}`,
         runId: run?.runId ?? "typed",
         durationMin: setup.durationMin ?? lengthMin,
+        // Figures that nobody changed are still the history's, and leave out what it does.
+        ...(replaced?.countedMin !== undefined &&
+          replaced.averageDb === facts.averageDb &&
+          replaced.dosePct === facts.dosePct && {
+            durationMin: replaced.countedMin,
+            leftOut: replaced.leftOut,
+          }),
         covers: setup.covers,
         instrument,
         keptReason: run?.keptReason ?? null,

@@ -1,5 +1,6 @@
 import { useLingui } from "@lingui/react";
-import { formatNumber } from "../../../shared/format/number";
+import { editNumber, formatNumber } from "../../../shared/format/number";
+import { toDb } from "../../../shared/history-file/cells";
 import type { HistoryHead, HistoryMapping } from "../../../shared/schemas/history";
 import { useLocale } from "../../lib/i18n";
 import { CHANNEL_SYMBOL } from "./import-words";
@@ -11,7 +12,10 @@ const SHOWN = 6;
 export function FirstLines({ head, mapping }: { head: HistoryHead; mapping: HistoryMapping }) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  const valueText = (value: ReadLine["values"][number]) => {
+  const valueText = (
+    value: ReadLine["values"][number],
+    unit: HistoryMapping["levels"][number]["unit"],
+  ) => {
     switch (value) {
       case "missing":
         return i18n.t("missing");
@@ -22,7 +26,17 @@ export function FirstLines({ head, mapping }: { head: HistoryHead; mapping: Hist
       case "unreadable":
         return i18n.t("can’t be read");
       default:
-        return formatNumber(value, 2, locale);
+        // As it is written, and as it will be stored.
+        return unit === "dB" ? (
+          formatNumber(value, 2, locale)
+        ) : (
+          <>
+            {editNumber(value, locale)}
+            <span className="beneath block">
+              {i18n.t("{level} dB", { level: formatNumber(toDb(value, unit), 2, locale) })}
+            </span>
+          </>
+        );
     }
   };
   return (
@@ -53,7 +67,7 @@ export function FirstLines({ head, mapping }: { head: HistoryHead; mapping: Hist
               <td className="mono">{time ?? i18n.t("can’t be read")}</td>
               {values.map((value, index) => (
                 <td className="mono" key={mapping.levels[index]!.column}>
-                  {valueText(value)}
+                  {valueText(value, mapping.levels[index]!.unit)}
                 </td>
               ))}
             </tr>

@@ -323,6 +323,7 @@ export function StretchList({
         columns={columns}
         rows={rows}
         rowKey={({ key }) => key}
+        stacksOnPhone
         empty={
           <Empty title={i18n.t("Nothing is drawn under this history yet.")}>
             {canChange &&

@@ -216,6 +216,9 @@ function Lane({
       width: `${(100 * (to - from)) / spanS}%`,
     };
   };
+  /** A reason is longer than what it leaves out, and is read on up to the next one. */
+  const roomFor = ({ fromS }: Span, next: Span | undefined) =>
+    `${(100 * ((next?.fromS ?? span.toS) - Math.max(fromS, span.fromS))) / spanS}cqw`;
   const seen = drawn
     .filter((one) => one.kind === kind && one.toS > span.fromS && one.fromS < span.toS)
     .toSorted((a, b) => a.fromS - b.fromS);
@@ -238,7 +241,7 @@ function Lane({
         onPointerUp={onPointerUp}
         onPointerCancel={letGo}
       >
-        {seen.map((one) => {
+        {seen.map((one, index) => {
           const name = stretchName(i18n, one, taskNames);
           const minutes = formatMinutes((one.toS - one.fromS) / 60, locale);
           const range = rangeText(clock, one);
@@ -248,7 +251,7 @@ function Lane({
               bracketKey={one.key}
               className={`bracket is-${kind}${one.key === openKey ? " is-open" : ""}`}
               cut={{ from: one.fromS < span.fromS, to: one.toS > span.toS }}
-              style={place(one)}
+              style={{ ...place(one), "--room": roomFor(one, seen[index + 1]) }}
               label={i18n.t("{name}, {range}, {minutes} min", { name, range, minutes })}
               hintId={hintId}
               onKeyDown={(event) => onBracketKey(event, one)}
@@ -294,7 +297,7 @@ function Bracket({
   className: string;
   /** Ends that lie beyond what is seen. */
   cut: Readonly<Record<Edge, boolean>>;
-  style: { left: string; width: string };
+  style: { left: string; width: string; "--room": string };
   label: string;
   hintId: string;
   onKeyDown: (event: KeyboardEvent) => void;

@@ -92,13 +92,16 @@ export function TasksTable({
     },
   ];
   return (
-    <DataTable
-      caption={i18n.t("Levels and doses by task")}
-      columns={columns}
-      rows={rows}
-      rowKey={({ key }) => key}
-      empty={<Empty title={i18n.t("No task has a bracket yet.")} />}
-    />
+    <div className="figures-frame">
+      <DataTable
+        caption={i18n.t("Levels and doses by task")}
+        columns={columns}
+        rows={rows}
+        rowKey={({ key }) => key}
+        stacksOnPhone
+        empty={<Empty title={i18n.t("No task has a bracket yet.")} />}
+      />
+    </div>
   );
 }
 
@@ -205,15 +208,16 @@ export function CompareTable({ analysis }: { analysis: HistoryAnalysis }) {
       : []),
   ];
   return (
-    <>
+    <div className="figures-frame">
       <DataTable
         caption={i18n.t("Results with and without what is left out")}
         columns={columns}
         rows={rows}
         rowKey={({ id }) => id}
+        stacksOnPhone={hasLeftOut}
       />
       {!hasLeftOut && <p className="field-note">{i18n.t("Nothing is left out.")}</p>}
-    </>
+    </div>
   );
 }
 
@@ -363,6 +367,7 @@ export function QuartersTable({
       head: i18n.t("LASmax"),
       unit: "dB",
       kind: "figure",
+      hidesOnPhone: true,
       cell: ({ slowMax }) => formatLevel(slowMax?.levelDb ?? null, locale, slowMax?.bound),
     },
     ...analysis.runningDose.map(
@@ -371,6 +376,7 @@ export function QuartersTable({
         head: criterionText(i18n, dose, locale),
         unit: i18n.t("dose so far"),
         kind: "figure",
+        hidesOnPhone: place > 0,
         cell: ({ dosePct }) => formatBoundedDose(dosePct[place] ?? null, dose.bound, locale),
       }),
     ),

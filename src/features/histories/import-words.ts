@@ -112,6 +112,11 @@ export function historyIssueText(
         "“{text}” is no level. Where it marks a value over or under the range, enter it as a mark.",
         { text },
       );
+    case "levels-with-a-sign":
+      return i18n.t(
+        "“{text}” has “{sign}” after its number, and so {count, plural, one {has # value} other {have # values}} of this column. Enter “{sign}” as a mark over or under the range, whichever it means.",
+        { text, sign: String(params.sign), count },
+      );
     case "no-values":
       return i18n.t("No line could be read by this mapping.");
     case "start-missing":

@@ -1,4 +1,5 @@
 import { useLingui } from "@lingui/react";
+import { KNOWN_OVER_MARKS, KNOWN_UNDER_MARKS } from "../../../shared/history-file/cells";
 import type { HistoryHead } from "../../../shared/schemas/history";
 import { DateInput } from "../../components/date-input";
 import { Field } from "../../components/form";
@@ -227,7 +228,8 @@ export function MappingForm({
           label={i18n.t("Marks over the range")}
           isOptional
           note={i18n.t(
-            "As they stand in the file, with a space between them. Usual ones are known.",
+            "As they stand in the file, with a space between them. Known are {marks}, and what begins with “{sign}”.",
+            { marks: KNOWN_OVER_MARKS.join(", "), sign: ">" },
           )}
           error={undefined}
         >
@@ -240,7 +242,15 @@ export function MappingForm({
             />
           )}
         </Field>
-        <Field label={i18n.t("Marks under the range")} isOptional error={undefined}>
+        <Field
+          label={i18n.t("Marks under the range")}
+          isOptional
+          note={i18n.t("Known are {marks}, and what begins with “{sign}”.", {
+            marks: KNOWN_UNDER_MARKS.join(", "),
+            sign: "<",
+          })}
+          error={undefined}
+        >
           {(wires) => (
             <input
               {...wires}

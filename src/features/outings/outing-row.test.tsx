@@ -173,6 +173,21 @@ describe("a row in the evening, by keys alone", () => {
     ]);
   });
 
+  test("a figure that can't be read is said on leaving it, and stays as typed over a reload", async () => {
+    const { user } = show(row({ run: out }));
+    const figure = screen.getByLabelText("LAeq");
+    await user.type(figure, "91,2");
+    await user.tab();
+    expect(figure).toHaveAccessibleDescription("A level in dB, or a dose with %.");
+    await user.type(screen.getByLabelText("Check after"), "93,9");
+    await user.tab();
+    expect(screen.getByLabelText("Check after")).toHaveAccessibleDescription(/two ways/);
+    await user.clear(figure);
+    await user.type(figure, "91.2");
+    await user.tab();
+    expect(figure).not.toHaveAttribute("aria-invalid");
+  });
+
   test("Enter in the empty time stamps it and goes on; a dose is told by its %", async () => {
     const { user, handle } = show(row({ run: { ...out, expectedBackAt: null } as Row["run"] }));
     handle.current?.focus();

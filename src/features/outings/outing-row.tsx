@@ -228,10 +228,20 @@ export function OutingRow({
     return null;
   }
 
+  const readFigure = (text: string) => parseNumber(text.replace("%", ""), locale);
+
+  function onFigureLeft(name: string, text: string) {
+    if (!name.startsWith("figures.")) return;
+    const field = name as `figures.${number}`;
+    const { kind } = readFigure(text);
+    if (kind === "ok" || kind === "empty") form.clearErrors(field);
+    else form.setError(field, { message: i18n.t("A level in dB, or a dose with %.") });
+  }
+
   function readFigures(texts: readonly string[]): (Figure | null)[] | null {
     const found = texts.map((text) => {
       const isDose = text.trim().endsWith("%");
-      const parsed = parseNumber(text.replace("%", ""), locale);
+      const parsed = readFigure(text);
       if (parsed.kind === "empty") return null;
       if (parsed.kind !== "ok") return undefined;
       return isDose
@@ -447,6 +457,9 @@ export function OutingRow({
         className="outing-cells"
         noValidate
         onKeyDown={onKeyDown}
+        onBlur={({ target }) => {
+          if (target instanceof HTMLInputElement) onFigureLeft(target.name, target.value);
+        }}
         onSubmit={(event) => {
           event.preventDefault();
           void submit();

@@ -1,4 +1,5 @@
 import { describe, expect, test } from "vitest";
+import { Unreadable } from "../../components/form";
 import {
   createSampleDraftStore,
   elapsedMin,
@@ -37,6 +38,15 @@ test("a draft outlives the page, and belongs to one person", () => {
   expect(createSampleDraftStore(localStorage, "another").read()).toBeNull();
   createSampleDraftStore(localStorage, "one").write(null);
   expect(createSampleDraftStore(localStorage, "one").read()).toBeNull();
+});
+
+test("a level that can't be read is kept as it was typed, and is no level", () => {
+  const typed = { ...values, levelDb: new Unreadable("ambiguous", "86,7") };
+  const draft = { values: typed, files: [], timerStartedAt: null, pending: null };
+  createSampleDraftStore(localStorage, "one").write(draft as unknown as SampleDraft);
+  const found = createSampleDraftStore(localStorage, "one").read();
+  expect(found?.values.levelDb).toBeInstanceOf(Unreadable);
+  expect(found?.values.levelDb).toEqual(typed.levelDb);
 });
 
 test("what something else left in its place is no draft", () => {

@@ -1,4 +1,5 @@
 import type { FileView, SampleInput } from "../../../shared/schemas/outing";
+import { Unreadable } from "../../components/form";
 import type { SampleValues } from "./sample-fields";
 
 /** A sample that is being taken: kept on the phone, so that a reload, a call or an empty battery loses nothing. */
@@ -33,7 +34,10 @@ export function createSampleDraftStore(storage: Storage, userId: string): Sample
   return {
     read() {
       try {
-        const value: unknown = JSON.parse(storage.getItem(key) ?? "null");
+        const value: unknown = JSON.parse(storage.getItem(key) ?? "null", (_, one) =>
+          // What could not be read stands in its field as it was typed.
+          Unreadable.revive(one),
+        );
         return isDraft(value) ? value : null;
       } catch {
         // Something else wrote here: there is no draft of ours to lose.

@@ -53,10 +53,21 @@ export function ResultsTable({ survey }: { survey: SurveyDetail }) {
         },
         {
           id: "range",
-          head: i18n.t("Spread"),
-          unit: "dB",
+          // By tasks the standard asks about the span of the samples, otherwise about their standard deviation.
+          head: survey.strategy === "task" ? i18n.t("Spread") : i18n.t("Standard deviation"),
+          unit: survey.strategy === "task" ? "dB" : "u1, dB",
           kind: "figure",
-          cell: ({ rangeDb }) => formatLevel(rangeDb, locale),
+          cell: ({ rangeDb, scatterDb }) =>
+            survey.strategy === "task" ? (
+              formatLevel(rangeDb, locale)
+            ) : (
+              <span className="two-lines">
+                {formatLevel(scatterDb, locale)}
+                <span className="beneath">
+                  {i18n.t("span {range}", { range: formatLevel(rangeDb, locale) })}
+                </span>
+              </span>
+            ),
         },
         {
           id: "lc",

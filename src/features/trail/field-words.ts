@@ -166,6 +166,7 @@ const WORDS: Readonly<Record<string, (i18n: I18n) => string>> = {
   cycleMin: (i18n) => i18n.t("Length of a cycle"),
   // Time histories and recordings
   stretches: (i18n) => i18n.t("Stretches"),
+  leftOut: (i18n) => i18n.t("The time left out was"),
   channels: (i18n) => i18n.t("Columns"),
   startsAt: (i18n) => i18n.t("Begins"),
   endsAt: (i18n) => i18n.t("Ends"),
