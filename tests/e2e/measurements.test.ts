@@ -58,7 +58,8 @@ function levelsFile(): string {
   const lines = Array.from({ length: FILE_FOR_S }, (_, second) => {
     const minute = second / 60;
     const levelDb = minute >= 90 && minute < 95 ? 118 : minute >= 10 && minute < 70 ? 90 : 74;
-    return `${day}/${month}/${year};${clockAt(FILE_FROM_S + second)};${comma(levelDb)};${comma(levelDb + 16)}`;
+    // Dotted, a date is the day first whatever day it is: no test may hang on the calendar.
+    return `${day}.${month}.${year};${clockAt(FILE_FROM_S + second)};${comma(levelDb)};${comma(levelDb + 16)}`;
   });
   return `${["Datum;Tijd;Niveau;Piek", ...lines].join("\r\n")}\r\n`;
 }
