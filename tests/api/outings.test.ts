@@ -317,7 +317,7 @@ describe("out and back", () => {
 
   test.each([
     ["before it went out", at("05:00"), "ends-before-start"],
-    ["more than a day later", at("06:01", daysFromToday(0)), "longer-than-a-day"],
+    ["more than a day later", at("06:01", daysFromToday(-1)), "longer-than-a-day"],
     ["tomorrow", at("06:00", daysFromToday(1)), "in-the-future"],
   ])("is not back %s", async (_, backAt, code) => {
     const { client, start } = await buildDesk();

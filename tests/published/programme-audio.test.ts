@@ -101,9 +101,12 @@ describe("by energy (computed)", () => {
         (db, audioDb, moreDb, rules) => {
           const day = (audio: number) =>
             eightHours(db, buildProtection({ snrDb: 25, usRatingDb: 25 }, { audioDb: audio }), 90);
-          expect(atEar(day(audioDb + moreDb), rules)!).toBeGreaterThanOrEqual(
-            atEar(day(audioDb), rules)! - 1e-9,
+          const [less, more] = [audioDb, audioDb + moreDb].map((audio) =>
+            evaluateDay(day(audio), rules, []),
           );
+          // Of a day that is only bounded the end that decides is given: another end says nothing of more or less.
+          if (less!.atEarBound !== more!.atEarBound) return;
+          expect(more!.atEarDb!).toBeGreaterThanOrEqual(less!.atEarDb! - 1e-9);
         },
       ),
     );
