@@ -78,8 +78,8 @@ const noise = (levelDb: number): TaskLevel => ({
 
 const wearers: Wearer[] = Array.from({ length: WORKERS }, (_, index) => ({
   noises: [
-    { level: noise(90 + (index % 15)), durationMin: 120 },
-    { level: noise(86 + (index % 9)), durationMin: 300 },
+    { name: "Loud", level: noise(90 + (index % 15)), durationMin: 120 },
+    { name: "Less loud", level: noise(86 + (index % 9)), durationMin: 300 },
   ],
   personalTargetDb: null,
   wornGear: index % 4 === 0 ? ["glasses"] : [],

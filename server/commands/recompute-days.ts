@@ -140,6 +140,8 @@ export function resultFacts(input: DayInput, evaluation: DayEvaluation, governin
   const isOwn = ({ ruleSetKey }: CriterionResult) => ruleSetKey === governing.key;
   return {
     ...summary,
+    atEarOffDb: evaluation.atEarDb,
+    atEarCountedDb: evaluation.counted?.atEarDb ?? null,
     methodVersion: evaluation.methodVersion,
     shiftMin: evaluation.shiftMin,
     unaccountedMin: evaluation.unaccountedMin,
@@ -165,7 +167,8 @@ export const RESULT_COLUMNS = {
   is_kept: ["isKept", "boolean"],
   outside_db: ["outsideDb", "float8"],
   outside_bound: ["outsideBound", "text"],
-  at_ear_db: ["atEarDb", "float8"],
+  at_ear_db: ["atEarOffDb", "float8"],
+  at_ear_counted_db: ["atEarCountedDb", "float8"],
   at_ear_bound: ["atEarBound", "text"],
   at_ear_active_db: ["atEarActiveDb", "float8"],
   at_ear_as_worked_db: ["atEarAsWorkedDb", "float8"],

@@ -232,7 +232,7 @@ async function replaceSent({
      JOIN day_results told ON told.id = i.result_id JOIN day_results now ON now.id = x."resultId"
      WHERE n.state IN ('sending', 'sent', 'possibly-sent') AND now.id <> told.id
        AND (now.verdict_at_ear <> told.verdict_at_ear OR now.verdict_outside <> told.verdict_outside
-         OR abs(coalesce(now.at_ear_db, 0) - coalesce(told.at_ear_db, 0)) >= 0.05 OR abs(coalesce(now.outside_db, 0) - coalesce(told.outside_db, 0)) >= 0.05
+         OR abs(coalesce(now.at_ear_counted_db, now.at_ear_db, 0) - coalesce(told.at_ear_counted_db, told.at_ear_db, 0)) >= 0.05 OR abs(coalesce(now.outside_db, 0) - coalesce(told.outside_db, 0)) >= 0.05
          OR EXISTS (SELECT 1 FROM jsonb_to_recordset(now.criteria->'governing') AS c("criterionId" text, verdict text, "levelDb" float8)
               FULL JOIN jsonb_to_recordset(told.criteria->'governing') AS b("criterionId" text, verdict text, "levelDb" float8) USING ("criterionId")
               WHERE c.verdict IS DISTINCT FROM b.verdict OR abs(coalesce(c."levelDb", 0) - coalesce(b."levelDb", 0)) >= 0.05))

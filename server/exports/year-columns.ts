@@ -179,12 +179,20 @@ export const YEAR_COLUMNS: readonly YearColumn[] = [
     meaning: /* i18n */ "The day at the ear, active part on while the battery lasts",
   },
   {
+    name: "at_ear_counted_db",
+    sql: "r.at_ear_counted_db",
+    type: "number",
+    unit: "dB",
+    meaning:
+      /* i18n */ "The day at the ear as it is judged, where the site credits an active part that passed its check; empty where the part off counts",
+  },
+  {
     name: "while_worn_db",
     sql: "r.while_worn_db",
     type: "number",
     unit: "dB",
     meaning:
-      /* i18n */ "Level at the ear while the protector is worn, in the task that decides its word",
+      /* i18n */ "Level at the ear while the protector is worn, in the task that decides its word, active part on where it counts",
   },
   {
     name: "while_worn_bound",

@@ -128,7 +128,7 @@ export async function noticeMail(noticeId: string, publicUrl: string): Promise<M
   if (!head) throw new Error("the notice is gone");
   // A finding's facts are those of its latest day: what the item's own day came to takes their place.
   const items = await rows<NoticeItem>(
-    `SELECT w.name AS "workerName", w.employee_number AS "employeeNumber", i.date::text AS date, r.at_ear_db AS "atEarDb", r.outside_db AS "outsideDb",
+    `SELECT w.name AS "workerName", w.employee_number AS "employeeNumber", i.date::text AS date, coalesce(r.at_ear_counted_db, r.at_ear_db) AS "atEarDb", r.outside_db AS "outsideDb",
        jsonb_agg(jsonb_build_object('kind', f.kind, 'facts', f.facts || coalesce(own.figures, '{}'),
          'closedOn', CASE WHEN f.state = 'closed' THEN f.closed_on END,
          'isStillOver', EXISTS (SELECT 1 FROM finding_evidence e WHERE e.finding_id = f.id AND e.worker_id = i.worker_id AND e.date = i.date))
@@ -136,7 +136,7 @@ export async function noticeMail(noticeId: string, publicUrl: string): Promise<M
      FROM notice_items i JOIN findings f ON f.id = i.finding_id JOIN workers w ON w.id = i.worker_id JOIN day_results r ON r.id = i.result_id
      LEFT JOIN LATERAL (SELECT jsonb_build_object('levelDb', c->'levelDb', 'dosePct', c->'dosePct') AS figures FROM jsonb_path_query(r.criteria, '$.governing[*]') c
        WHERE concat(c->>'ruleSetKey', ':', c->>'criterionId') = f.criterion LIMIT 1) own ON TRUE
-     WHERE i.notice_id = :noticeId GROUP BY w.name, w.employee_number, i.date, r.at_ear_db, r.outside_db ORDER BY w.name, i.date`,
+     WHERE i.notice_id = :noticeId GROUP BY w.name, w.employee_number, i.date, r.at_ear_counted_db, r.at_ear_db, r.outside_db ORDER BY w.name, i.date`,
     { noticeId },
   );
   const locale = isLocale(head.language) ? head.language : "en";

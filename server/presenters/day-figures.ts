@@ -4,7 +4,8 @@ import type { DayFigures } from "../../shared/schemas/finding";
 export const DAY_FIGURES_COLUMNS = (
   r: string,
 ) => `${r}.id AS "resultId", ${r}.date::text AS date, ${r}.origin,
-  ${r}.outside_db AS "outsideDb", ${r}.outside_bound AS "outsideBound", ${r}.at_ear_db AS "atEarDb",
+  ${r}.outside_db AS "outsideDb", ${r}.outside_bound AS "outsideBound", coalesce(${r}.at_ear_counted_db, ${r}.at_ear_db) AS "atEarDb",
+  CASE WHEN ${r}.at_ear_counted_db IS NOT NULL THEN ${r}.at_ear_db END AS "atEarOffDb",
   coalesce(${r}.at_ear_bound, CASE WHEN ${r}.has_protector = 'no' THEN ${r}.outside_bound ELSE 'exact' END) AS "atEarBound", ${r}.own_target_db AS "ownTargetDb",
   ${r}.at_ear_active_db AS "atEarActiveDb", ${r}.at_ear_as_worked_db AS "atEarAsWorkedDb",
   ${r}.uncertainty_db AS "uncertaintyDb", ${r}.while_worn_db AS "whileWornDb", coalesce(${r}.while_worn_bound, 'exact') AS "whileWornBound",
@@ -25,6 +26,7 @@ export function presentDayFigures(row: DayFiguresRow): DayFigures {
     outsideDb: row.outsideDb,
     outsideBound: row.outsideBound,
     atEarDb: row.atEarDb,
+    atEarOffDb: row.atEarOffDb,
     atEarBound: row.atEarBound,
     atEarActiveDb: row.atEarActiveDb,
     atEarAsWorkedDb: row.atEarAsWorkedDb,

@@ -23,7 +23,7 @@ const isNotAssessed = `(d.verdict_outside = 'not-assessed' OR (d.verdict_at_ear 
 /** The days of a site's year that the actor may see with what is needed of their current results: read once for all. */
 const yearDays = (actor: Actor) => `
   year_days AS (
-    SELECT d.worker_id, d.date, r.id AS result_id, r.outside_db, r.at_ear_db, r.grade, r.verdict_outside, r.verdict_at_ear, r.word, r.reason,
+    SELECT d.worker_id, d.date, r.id AS result_id, r.outside_db, coalesce(r.at_ear_counted_db, r.at_ear_db) AS at_ear_db, r.grade, r.verdict_outside, r.verdict_at_ear, r.word, r.reason,
       r.governing_rule_set, r.governing_version
     FROM days d LEFT JOIN day_results r ON r.id = d.current_result_id
     WHERE d.site_id = :siteId AND d.date >= make_date(:year, 1, 1) AND d.date <= make_date(:year, 12, 31) AND ${visible(dayPolicy, actor, "d")})`;

@@ -87,6 +87,12 @@ export function evaluateDay(
     atEarBound,
     atEarActiveDb: atEar.on && shownLevelDb(atEar.on, law, atEar, atEarBound),
     atEarAsWorkedDb: atEar.asWorked && shownLevelDb(atEar.asWorked, law, atEar, atEarBound),
+    ...(atEar.creditedTaskIds.size > 0 && {
+      counted: {
+        atEarDb: shownLevelDb(atEar.judged, law, atEar, atEarBound),
+        whileWornDb: protector.wornDb,
+      },
+    }),
     uncertaintyDb: uncertainty.budget?.expandedDb ?? null,
     uncertaintyReason: uncertainty.reason,
     criteria,
@@ -343,8 +349,17 @@ function shownLevelDb(
 interface ProtectorJudgement {
   readonly word: ProtectorWord | null;
   readonly decidingTaskId: string | null;
+  /** While worn in the deciding task, active part on where it is credited; null without a word. */
+  readonly wornDb: number | null;
   readonly reason: Reason | null;
 }
+
+const noWord = (reason: Reason | null): ProtectorJudgement => ({
+  word: null,
+  decidingTaskId: null,
+  wornDb: null,
+  reason,
+});
 
 /**
  * The day's word for its protectors. By EN 458 that of the worst task while worn; by Appendix B the shift's TWA with
@@ -356,10 +371,10 @@ function judgeProtector(
   atEar: DayAtEar,
 ): ProtectorJudgement {
   const worn = atEar.tasks.filter(({ isWorn }) => isWorn);
-  if (worn.length === 0) return { word: null, decidingTaskId: null, reason: null };
+  if (worn.length === 0) return noWord(null);
   const { adequacy, targetDb } = ruleSet.protection;
   if (adequacy === "not-stated" || targetDb === null) {
-    return { word: null, decidingTaskId: null, reason: "not-stated" };
+    return noWord("not-stated");
   }
   return adequacy === "en-458"
     ? judgeByTask(worn, atEar)
@@ -383,9 +398,11 @@ function judgeByTask(worn: readonly TaskAtEar[], atEar: DayAtEar): ProtectorJudg
   );
   // An unknown task could still be worse than any word but the worst.
   if (open && deciding?.word !== "too-little") {
-    return { word: null, decidingTaskId: null, reason: open.reason };
+    return noWord(open.reason);
   }
-  return { word: deciding?.word ?? null, decidingTaskId: deciding?.id ?? null, reason: null };
+  return deciding
+    ? { word: deciding.word, decidingTaskId: deciding.id, wornDb: deciding.wornDb, reason: null }
+    : noWord(null);
 }
 
 function judgeByShift(
@@ -404,9 +421,14 @@ function judgeByShift(
   if (atLeast !== atMost) {
     const open = worn.find(({ governingMethod }) => governingMethod === null);
     const bound = most === Number.POSITIVE_INFINITY ? "only-lower-bound" : "only-upper-bound";
-    return { word: null, decidingTaskId: null, reason: missing ?? open?.reason ?? bound };
+    return noWord(missing ?? open?.reason ?? bound);
   }
-  return { word: atMost, decidingTaskId: loudest.timedTaskId, reason: null };
+  return {
+    word: atMost,
+    decidingTaskId: loudest.timedTaskId,
+    wornDb: atEar.creditedTaskIds.has(loudest.timedTaskId) ? loudest.wornActiveDb : loudest.wornDb,
+    reason: null,
+  };
 }
 
 const GRADES: readonly Grade[] = ["measured-worker", "measured-group", "task-level", "estimate"];

@@ -430,6 +430,11 @@ export interface DayEvaluation {
   readonly atEarActiveDb: number | null;
   /** The day as worked: active part on while the battery lasts. */
   readonly atEarAsWorkedDb: number | null;
+  /**
+   * Where the site credits an active part that passed its check: the day at the ear as it is judged, and the level while
+   * worn in the deciding task, dB. Absent: the part off counts, as in `atEarDb`.
+   */
+  readonly counted?: { readonly atEarDb: number | null; readonly whileWornDb: number | null };
   /** Expanded uncertainty of the energy level (LEX), dB; belongs to no dose. */
   readonly uncertaintyDb: number | null;
   readonly uncertaintyReason: UncertaintyReason | null;

@@ -68,12 +68,15 @@ export function summarizeDay(
     date: evaluation.date,
     outsideDb: evaluation.outsideDb,
     outsideBound: evaluation.outsideBound,
-    atEarDb: evaluation.atEarDb,
+    atEarDb: evaluation.counted ? evaluation.counted.atEarDb : evaluation.atEarDb,
+    atEarOffDb: evaluation.counted ? evaluation.atEarDb : null,
     atEarBound: evaluation.atEarBound,
     atEarActiveDb: evaluation.atEarActiveDb,
     atEarAsWorkedDb: evaluation.atEarAsWorkedDb,
     uncertaintyDb: evaluation.uncertaintyDb,
-    ...whileWorn(deciding, evaluation.atEarBound),
+    ...(evaluation.counted
+      ? { whileWornDb: evaluation.counted.whileWornDb, whileWornBound: "exact" as const }
+      : whileWorn(deciding, evaluation.atEarBound)),
     verdictOutside: headline(outside),
     verdictAtEar: headline(atEar),
     word: evaluation.word,

@@ -146,6 +146,10 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t(
         "Mean and deviation of a band belong together: type both, or leave both empty.",
       );
+    case "attenuation-negative":
+      return i18n.t(
+        "Attenuation is what is taken off: type it without the minus. A protector that lets more through than there is goes on no register.",
+      );
     case "bands-backwards":
       return i18n.t(
         "No protector takes so much more off low frequencies than off high ones. The bands may stand in the wrong order: 63 or 125 Hz comes first.",

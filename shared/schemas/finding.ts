@@ -32,7 +32,10 @@ export const DayFigures = z.object({
   origin: z.enum(["computed", "imported"]),
   outsideDb: z.number().nullable(),
   outsideBound: z.enum(["exact", "upper", "lower"]),
+  /** As it counts: active part off, unless the site credits it and this worker passed its check. */
   atEarDb: z.number().nullable(),
+  /** With the part off, where `atEarDb` has it on. */
+  atEarOffDb: z.number().nullable(),
   atEarBound: z.enum(["exact", "upper", "lower"]),
   atEarActiveDb: z.number().nullable(),
   atEarAsWorkedDb: z.number().nullable(),

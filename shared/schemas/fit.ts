@@ -135,7 +135,11 @@ export const Candidate = z.object({
   word: z
     .enum(["too-little", "just-enough", "good", "strong-side", "too-much", "enough"])
     .nullable(),
+  /** While worn in the noise that decides; under a rule that judges the shift in the loudest. */
   wornDb: z.number().nullable(),
+  wornIn: z.string().nullable(),
+  /** The shift's TWA with it on, where the rule judges the shift. */
+  twaDb: z.number().nullable(),
   /** By how far the lower-confidence level at the ear stays under the target, dB. */
   marginDb: z.number().nullable(),
   lastFit: z

@@ -44,8 +44,19 @@ function faultsOfBands({ meanDb, sdDb }: BandAttenuation) {
     faults.push({ path: ["sdDb"], code: "deviation-negative" });
   if ((meanDb[0] === null) !== (sdDb[0] === null))
     faults.push({ path: ["sdDb", 0], code: "band-missing" });
-  if (isBackwards(meanDb)) faults.push({ path: ["meanDb"], code: "bands-backwards" });
+  const negative = takesNothing(meanDb);
+  if (negative !== null) faults.push({ path: ["meanDb", negative], code: "attenuation-negative" });
+  else if (isBackwards(meanDb)) faults.push({ path: ["meanDb"], code: "bands-backwards" });
   return faults;
+}
+
+/** A cup may let a little more through in one low band; what is below zero in most was typed with its sign turned. */
+const MOST_BANDS = 4;
+
+/** The first band below zero where most are; null: they aren't. */
+function takesNothing(meanDb: OctaveBandValues): number | null {
+  const below = meanDb.flatMap((bandDb, band) => (bandDb !== null && bandDb < 0 ? [band] : []));
+  return below.length >= MOST_BANDS ? below[0]! : null;
 }
 
 const isBackwards = ([, at125, , , , , at4000, at8000]: OctaveBandValues): boolean =>

@@ -38,6 +38,8 @@ export interface StripFacts {
   readonly atEarDb: number | null;
   readonly atEarBound: "exact" | "upper" | "lower";
   readonly atEarUDb: number | null;
+  /** With the active part off, where the one above has it on; absent: it has it off. */
+  readonly atEarOffDb?: number | null;
   readonly atEarActiveDb: number | null;
   readonly atEarAsWorkedDb: number | null;
   /** At the ear while worn, in the task that decides the day's word. */

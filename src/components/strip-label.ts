@@ -37,6 +37,8 @@ export function stripLabel(i18n: I18n, props: StripWords): string {
     if (props.isExpected) parts.push(i18n.t("expected"));
     if (props.verdict) parts.push(withinSentence(verdictWord(i18n, props.verdict), locale));
     let sentence = parts.join(", ");
+    if (props.atEarOffDb != null)
+      sentence += i18n.t("; {level} with the active part off", { level: level(props.atEarOffDb) });
     if (props.atEarActiveDb !== null)
       sentence += i18n.t("; {level} with the active part on", {
         level: level(props.atEarActiveDb),

@@ -46,7 +46,9 @@ export function stripOfDay(figures: DayFigures, frame: StripFrame): StripWords {
     atEarDb: figures.atEarDb,
     atEarBound: figures.atEarBound,
     atEarUDb: figures.atEarBound === "exact" ? figures.uncertaintyDb : null,
-    atEarActiveDb: figures.atEarActiveDb,
+    atEarOffDb: figures.atEarOffDb,
+    // The tick is then where the ring would be.
+    atEarActiveDb: figures.atEarOffDb === null ? figures.atEarActiveDb : null,
     atEarAsWorkedDb: figures.atEarAsWorkedDb,
     whileWornDb: figures.whileWornDb,
     whileWornBound: figures.whileWornBound,

@@ -116,10 +116,14 @@ function Compared({ choice }: { choice: ProtectorChoiceView }) {
     fromDate: string;
   } | null>(null);
   const giveAt = useRef<HTMLDivElement>(null);
+  const saidAt = useRef<HTMLParagraphElement>(null);
   const { subject, noises, requiredGear, targetDb } = choice;
   useEffect(() => {
     if (picked) giveAt.current?.querySelector<HTMLElement>("input, select")?.focus();
   }, [picked]);
+  useEffect(() => {
+    if (given) saidAt.current?.focus();
+  }, [given]);
   const pick = (candidate: Candidate) => {
     setGiven(null);
     setPicked(candidate);
@@ -172,7 +176,7 @@ function Compared({ choice }: { choice: ProtectorChoiceView }) {
           })}
         </p>
       )}
-      <p className="desk-said">
+      <p className="desk-said" ref={saidAt} tabIndex={-1}>
         <Status>
           {given &&
             i18n.t(

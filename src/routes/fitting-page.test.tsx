@@ -30,6 +30,8 @@ const candidate = (modelId: string, name: string, kind: string, more: object = {
   excludedBy: null,
   word: "good" as const,
   wornDb: 77.6,
+  wornIn: "Chipping",
+  twaDb: null,
   marginDb: 5.2,
   lastFit: null,
   batteryMin: null,

@@ -6,6 +6,7 @@ import { formatDate } from "../../shared/format/date";
 import { formatLevel, formatLimit } from "../../shared/format/level";
 import { isolate } from "../../shared/i18n/isolate";
 import { ruleSetVersion } from "../../shared/rule-sets";
+import { IsoDate } from "../../shared/schemas/common";
 import type { ResultView } from "../../shared/schemas/result";
 import {
   AtEarFigure,
@@ -39,7 +40,9 @@ const workingName = (id: string) => id.slice(0, 8);
 export function Component() {
   const { i18n } = useLingui();
   const locale = useLocale();
-  const { id = "", date } = useParams();
+  const { id = "", date: asked } = useParams();
+  // An address with something else in it names no day: the answer is the one for a day that is not there.
+  const date = asked === undefined || IsoDate.safeParse(asked).success ? asked : "0001-01-01";
   const user = useUser();
   const day = useQuery({ ...dayResultQuery(id, date ?? ""), enabled: date !== undefined });
   const storedOne = useQuery({ ...storedResultQuery(id), enabled: date === undefined });
@@ -201,7 +204,17 @@ function ResultStrip({ result: { figures } }: { result: ResultView }) {
             })}
           </span>
         )}
-        {figures.atEarActiveDb !== null && (
+        {figures.atEarOffDb !== null && (
+          <span>
+            {i18n.t(
+              "{level} with the active part off: the site credits it, and its check was passed",
+              {
+                level: level(figures.atEarOffDb),
+              },
+            )}
+          </span>
+        )}
+        {figures.atEarActiveDb !== null && figures.atEarOffDb === null && (
           <span>
             {i18n.t("○ {level} with the active part on", { level: level(figures.atEarActiveDb) })}
           </span>

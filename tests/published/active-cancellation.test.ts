@@ -135,6 +135,24 @@ describe("what a device is credited", () => {
     for (const band of [5, 6, 7]) expect(late[band]).toBeLessThanOrEqual(0);
   });
 
+  test("past the break-even only added noise counts, frequency by frequency (summed by hand)", () => {
+    const [delayS, gain] = [500e-6, 0.95];
+    const found = activeAttenuationDb({ ...ACTIVE, delayS, gain, maximumDb: null })!;
+    const evenHz = breakEvenHz(delayS, gain)!;
+    for (const band of [4, 5, 6, 7]) {
+      const midHz = 1000 * 10 ** (0.3 * (band - 4));
+      const [fromHz, toHz] = [midHz / 10 ** 0.15, midHz * 10 ** 0.15];
+      const steps = 20_000;
+      let sum = 0;
+      for (let step = 0; step < steps; step += 1) {
+        const hz = fromHz + ((step + 0.5) / steps) * (toHz - fromHz);
+        const residual = 10 ** (-cancellationDb(gain, 2 * Math.PI * hz * delayS) / 10);
+        sum += hz < evenHz ? residual : Math.max(1, residual);
+      }
+      expect(found[band]).toBeCloseTo(-10 * Math.log10(sum / steps), 4);
+    }
+  });
+
   test("none above the stated bandwidth, but the noise it adds there counts", () => {
     const narrow = activeAttenuationDb({ ...ACTIVE, bandwidthHz: 500 })!;
     expect(narrow[4]).toBeLessThanOrEqual(0);

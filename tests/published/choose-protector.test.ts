@@ -33,7 +33,7 @@ function offer(modelId: string, data: Partial<ProtectorData>, fields: Partial<Of
 
 function wearer(levelDb: number, fields: Partial<Wearer> = {}): Wearer {
   return {
-    noises: [{ level: buildLevel(levelDb, { lcMinusLaDb: 0 }), durationMin: 480 }],
+    noises: [{ name: "Mill", level: buildLevel(levelDb, { lcMinusLaDb: 0 }), durationMin: 480 }],
     personalTargetDb: null,
     wornGear: [],
     wornMin: 480,
@@ -108,7 +108,9 @@ describe("the order, one comparison after the other", () => {
 
   test("the margin is that of lower confidence: mean − 1.64 deviations", () => {
     const flat = (db: number): OctaveBandValues => [db, db, db, db, db, db, db, db];
-    const noises = [{ level: buildLevel(100, { octaveBandsDb: flat(90) }), durationMin: 480 }];
+    const noises = [
+      { name: "Mill", level: buildLevel(100, { octaveBandsDb: flat(90) }), durationMin: 480 },
+    ];
     const found = new ProtectorChoice(
       [
         offer("wide", { bands: { meanDb: flat(30), sdDb: flat(8) } }),
@@ -166,6 +168,7 @@ describe("the order, one comparison after the other", () => {
 
 describe("several noises", () => {
   const noises = [100, 88].map((db) => ({
+    name: `${db}`,
     level: buildLevel(db, { lcMinusLaDb: 0 }),
     durationMin: 240,
   }));
@@ -175,12 +178,13 @@ describe("several noises", () => {
       wearer(0, { noises }),
     );
     // 78 in one, 66 in the other: too much there.
-    expect(found).toMatchObject({ word: "too-much", wornDb: 66 });
+    expect(found).toMatchObject({ word: "too-much", wornDb: 66, wornIn: "88", twaDb: null });
     expect(found!.marginDb).toBeCloseTo(7, 9);
   });
 
   test("Appendix B: the TWA of them all under the protector (computed)", () => {
-    const steady = noises.map(({ level, durationMin }) => ({
+    const steady = noises.map(({ name, level, durationMin }) => ({
+      name,
       level: { ...level, metric: STEADY, lcMinusLaDb: null },
       durationMin,
     }));
@@ -190,9 +194,34 @@ describe("several noises", () => {
       US_LAW,
     ).for(wearer(0, { noises: steady }));
     const twa = 5 * Math.log2(0.5 * 2 ** (88 / 5) + 0.5 * 2 ** (76 / 5));
-    expect(found!.wornDb).toBeCloseTo(twa, 9);
-    expect(found).toMatchObject({ word: "enough" });
+    expect(found!.twaDb).toBeCloseTo(twa, 9);
+    // While worn in the louder one: 100 − (19 − 7).
+    expect(found).toMatchObject({ word: "enough", wornDb: 88, wornIn: "100" });
     expect(found!.marginDb).toBeCloseTo(90 - twa, 9);
+  });
+
+  test("of what is too much somewhere the one that may be too little elsewhere comes last", () => {
+    const flat = (db: number): OctaveBandValues => [db, db, db, db, db, db, db, db];
+    const spectra = [
+      { name: "Loud", level: buildLevel(107, { octaveBandsDb: flat(100) }), durationMin: 60 },
+      { name: "Quiet", level: buildLevel(92, { octaveBandsDb: flat(85) }), durationMin: 60 },
+    ];
+    const banded = (name: string, meanDb: number, sdDb: number) =>
+      offer(name, { bands: { meanDb: flat(meanDb), sdDb: flat(sdDb) } });
+    // Flat bands of 100 dB are 107.0 dB(A): 24 off leaves 83, and 22.1 off with lower confidence 84.9; the wide one
+    // leaves 83 by the rule as well, and 86.2 with lower confidence.
+    const found = new ProtectorChoice(
+      [banded("a wide", 29, 5), banded("narrow", 27, 3), banded("far", 36, 2)],
+      EU,
+      ENERGY_LAW,
+    ).for(wearer(0, { noises: spectra }));
+    expect(found.map(({ name, word }) => [name, word])).toEqual([
+      ["narrow", "too-much"],
+      ["far", "too-much"],
+      ["a wide", "too-much"],
+    ]);
+    expect(found[0]!.marginDb).toBeGreaterThanOrEqual(0);
+    expect(found[2]!.marginDb).toBeLessThan(0);
   });
 
   test("none on record: nothing to say", () => {
@@ -214,7 +243,9 @@ test("two together are offered by their test data, and say which outer one", () 
       name: "plug and muff",
     },
   );
-  const noises = [{ level: buildLevel(112, { octaveBandsDb: flat(102) }), durationMin: 60 }];
+  const noises = [
+    { name: "Mill", level: buildLevel(112, { octaveBandsDb: flat(102) }), durationMin: 60 },
+  ];
   const choice = new ProtectorChoice([two, offer("plug", { snrDb: 20 })], EU, ENERGY_LAW);
   const found = choice.for(wearer(0, { noises }));
   expect(found[0]).toMatchObject({ modelId: "plug", outerModelId: "muff", word: "good" });
@@ -262,7 +293,7 @@ test("property: every level is the one that the day's engine has, for any data a
           [offer("a", {}, { inner, outer, combinationBands })],
           rule,
           rule.adequacy === "appendix-b" ? US_LAW : ENERGY_LAW,
-        ).for(wearer(0, { noises: [{ level, durationMin: 480 }], fits }));
+        ).for(wearer(0, { noises: [{ name: "Mill", level, durationMin: 480 }], fits }));
         const protection = {
           assignmentId: null,
           inner,

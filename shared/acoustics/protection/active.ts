@@ -69,11 +69,35 @@ function averageResidual(fromHz: number, toHz: number, delayS: number, gain: num
 }
 
 /**
+ * Power left of a band where nothing that is taken away counts, only what is added: the mean of the larger of 1 and the
+ * residual, in closed form. Noise is added where cos φ < g/2, from the break-even on once in every turn of the phase.
+ *
+ * @source elliott-2001 two-wave cancellation
+ */
+function averageWithAdded(fromHz: number, toHz: number, delayS: number, gain: number): number {
+  if (delayS === 0) return Math.max(1, (1 - gain) ** 2);
+  const turn = 2 * Math.PI * delayS;
+  const [from, to] = [turn * fromHz, turn * toHz];
+  const evenRad = breakEvenPhaseRad(gain) ?? 0;
+  let added = 0;
+  for (
+    let start = 2 * Math.PI * Math.floor(from / (2 * Math.PI));
+    start < to;
+    start += 2 * Math.PI
+  ) {
+    const a = Math.max(from, start + evenRad);
+    const b = Math.min(to, start + 2 * Math.PI - evenRad);
+    if (b > a) added += gain * gain * (b - a) - 2 * gain * (Math.sin(b) - Math.sin(a));
+  }
+  return 1 + added / (to - from);
+}
+
+/**
  * Active attenuation of a device by octave band, dB; null where it states neither bands nor a delay and a gain.
  *
  * From the test report where there is one, else from delay and gain over each band. No credit past the first
  * break-even (the formula repeats at whole periods, a device does not) or above the bandwidth, none beyond the stated
- * maximum; the noise a device adds counts everywhere.
+ * maximum; above that only the noise it adds counts, frequency by frequency.
  *
  * @source elliott-2001 two-wave cancellation
  */
@@ -111,11 +135,11 @@ function creditedBandDb(
     return Math.min(maximumDb, averageCancellationDb(fromHz, toHz, delayS, gain));
   }
   if (fromHz >= creditEndsHz) {
-    return Math.min(0, averageCancellationDb(fromHz, toHz, delayS, gain));
+    return -10 * Math.log10(averageWithAdded(fromHz, toHz, delayS, gain));
   }
   const least = 10 ** (-maximumDb / 10);
   const credited = Math.max(least, averageResidual(fromHz, creditEndsHz, delayS, gain));
-  const beyond = Math.max(1, averageResidual(creditEndsHz, toHz, delayS, gain));
+  const beyond = averageWithAdded(creditEndsHz, toHz, delayS, gain);
   const share = (creditEndsHz - fromHz) / (toHz - fromHz);
   return -10 * Math.log10(share * credited + (1 - share) * beyond);
 }

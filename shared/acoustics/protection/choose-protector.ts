@@ -54,7 +54,11 @@ export interface OwnFit {
 
 /** Who is to wear it, and in what. */
 export interface Wearer {
-  readonly noises: readonly { readonly level: TaskLevel; readonly durationMin: number }[];
+  readonly noises: readonly {
+    readonly name: string;
+    readonly level: TaskLevel;
+    readonly durationMin: number;
+  }[];
   /** A stricter target of this worker's own, dB. */
   readonly personalTargetDb: number | null;
   readonly wornGear: readonly WornGear[];
@@ -85,8 +89,11 @@ export interface RankedProtector {
     readonly gear: WornGear | null;
   } | null;
   readonly word: ProtectorWord | null;
-  /** While worn in the deciding noise; by Appendix B the TWA of all noises. Active part off, dB(A). */
+  /** While worn in the noise that decides the word; by Appendix B in the loudest. Active part off, dB(A). */
   readonly wornDb: number | null;
+  readonly wornIn: string | null;
+  /** By Appendix B: the TWA of all noises with it on, which the word is about. Null under other rules. */
+  readonly twaDb: number | null;
   /** By how far the lower-confidence level at the ear stays under the target, dB. */
   readonly marginDb: number | null;
   readonly lastFit: OwnFit | null;
@@ -117,6 +124,7 @@ interface Prepared {
 
 /** A noise with what all offers need of it. */
 interface Noise {
+  readonly name: string;
   readonly levelDb: number;
   readonly durationMin: number;
   /** A-weighted powers by band, NaN where not known; null without a spectrum. */
@@ -208,6 +216,8 @@ export class ProtectorChoice {
       const wornDb = noise.levelDb - Math.max(0, governing.reductionDb);
       const lowDb = noise.levelDb - Math.max(0, governing.lowReductionDb);
       if (isByShift) {
+        if (deciding === null || wornDb > deciding.wornDb)
+          deciding = { word: null, wornDb, wornIn: noise.name, twaDb: null, marginDb: null };
         wornSum += noise.durationMin * weightOf(wornDb, law);
         lowSum += noise.durationMin * weightOf(lowDb, law);
         continue;
@@ -216,16 +226,17 @@ export class ProtectorChoice {
         rule.adequacy === "en-458" && targetDb !== null ? en458Word(wornDb, targetDb) : null;
       if (targetDb !== null) worstMarginDb = Math.min(worstMarginDb, targetDb - lowDb);
       if (deciding === null || decidesBefore(word, wornDb, deciding)) {
-        deciding = { word, wornDb, marginDb: null };
+        deciding = { word, wornDb, wornIn: noise.name, twaDb: null, marginDb: null };
       }
     }
     if (!isByShift) return { ...deciding!, marginDb: targetDb === null ? null : worstMarginDb };
     const factor = levelFactor(law);
-    const wornDb = factor * Math.log10(wornSum / law.referenceMin);
+    const twaDb = factor * Math.log10(wornSum / law.referenceMin);
     const lowDb = factor * Math.log10(lowSum / law.referenceMin);
     return {
-      word: targetDb === null ? null : appendixBWord(wornDb, targetDb),
-      wornDb,
+      ...deciding!,
+      word: targetDb === null ? null : appendixBWord(twaDb, targetDb),
+      twaDb,
       marginDb: targetDb === null ? null : targetDb - lowDb,
     };
   }
@@ -234,6 +245,8 @@ export class ProtectorChoice {
 interface AtEar {
   readonly word: ProtectorWord | null;
   readonly wornDb: number;
+  readonly wornIn: string;
+  readonly twaDb: number | null;
   readonly marginDb: number | null;
 }
 
@@ -314,10 +327,14 @@ function decidingComparison(before: number, place: number): DecidedBy {
   return decidedBy;
 }
 
-/** Whole decibels of margin, the most first; of what is too much anyway the least first. */
+/**
+ * Whole decibels of margin, the most first. Of what is too much somewhere the least first, but what may be too little
+ * elsewhere after all that is surely enough.
+ */
 function marginStep(marginDb: number | null, word: ProtectorWord | null): number {
   const step = Math.max(-MIDDLE, Math.min(MIDDLE, Math.floor(marginDb ?? 0)));
-  return MIDDLE + (word === "too-much" ? step : -step);
+  if (word !== "too-much") return MIDDLE - step;
+  return step >= 0 ? step : MIDDLE - step;
 }
 
 /** No level is further than this from its target, dB. */
@@ -336,6 +353,8 @@ function shownAs(
     excludedBy,
     word: atEar?.word ?? null,
     wornDb: atEar?.wornDb ?? null,
+    wornIn: atEar?.wornIn ?? null,
+    twaDb: atEar?.twaDb ?? null,
     marginDb: atEar?.marginDb ?? null,
     lastFit: fit,
     batteryMin: offer.inner.active?.batteryMin ?? null,
@@ -411,13 +430,13 @@ function factorsOf(attenuationDb: OctaveBandValues): Float64Array {
   );
 }
 
-function toNoise({ level, durationMin }: Wearer["noises"][number]): Noise {
+function toNoise({ name, level, durationMin }: Wearer["noises"][number]): Noise {
   const { octaveBandsDb, levelDb, lcMinusLaDb: statedLcLaDb } = level;
   const powers = octaveBandsDb && new Float64Array(octaveBandsDb.length);
   if (powers)
     for (const [band, bandDb] of octaveBandsDb.entries())
       powers[band] = bandDb === null ? Number.NaN : 10 ** ((bandDb + A_WEIGHTING_DB[band]!) / 10);
-  return { levelDb, durationMin, powers, lcLaDb: lcMinusLaDb(level), statedLcLaDb };
+  return { name, levelDb, durationMin, powers, lcLaDb: lcMinusLaDb(level), statedLcLaDb };
 }
 
 /** What the rule's governing method takes off, and what it does with lower confidence, dB; null: none of them can say. */

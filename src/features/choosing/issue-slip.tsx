@@ -17,6 +17,10 @@ type Device = IssueSlip["protectors"][number];
 
 const nameOf = ({ name, outerName }: Device) => [name, outerName].filter(Boolean).join(" + ");
 
+/** A device that is worn for several uses is shown once. */
+const oncePerDevice = (devices: readonly Device[]) =>
+  devices.filter((device, at) => devices.findIndex((one) => nameOf(one) === nameOf(device)) === at);
+
 /** A page of A4 for a worker: what is worn where, what was shown, and who signed. */
 export function IssueSlipPage({ slip, issuedBy }: { slip: IssueSlip; issuedBy: string }) {
   const { i18n } = useLingui();
@@ -27,14 +31,14 @@ export function IssueSlipPage({ slip, issuedBy }: { slip: IssueSlip; issuedBy: s
     [i18n.t("Worker"), worker.name],
     [i18n.t("Number"), worker.employeeNumber],
     [i18n.t("Crew"), worker.crewName ?? i18n.t("none")],
-    [i18n.t("Issued by"), issuedBy],
+    [i18n.t("Printed by"), issuedBy],
   ];
   return (
     <article className="field-sheet issue-slip" aria-label={worker.name}>
       <header className="field-sheet-head">
         <b>Dinward</b>
         <span>
-          {[worker.siteName, i18n.t("issued {date}", { date: formatDate(slip.date, locale) })].join(
+          {[worker.siteName, i18n.t("as of {date}", { date: formatDate(slip.date, locale) })].join(
             ", ",
           )}
         </span>
@@ -99,7 +103,7 @@ export function IssueSlipPage({ slip, issuedBy }: { slip: IssueSlip; issuedBy: s
       )}
       <h3>{i18n.t("Shown and understood")}</h3>
       <ul className="slip-checks">
-        {protectors.flatMap((device) =>
+        {oncePerDevice(protectors).flatMap((device) =>
           [
             ...instructionsFor(i18n, device.kind as ProtectorKind),
             ...(device.batteryMin === null

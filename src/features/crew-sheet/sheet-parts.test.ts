@@ -21,6 +21,7 @@ const figures = (facts: Partial<Figures> = {}): Figures => ({
   outsideDb: 102,
   outsideBound: "exact",
   atEarDb: 77,
+  atEarOffDb: null,
   atEarBound: "exact",
   atEarActiveDb: null,
   atEarAsWorkedDb: null,

@@ -117,7 +117,10 @@ export function WorkedOut({
         {isWorn && summary.atEarDb !== null && summary.atEarActiveDb !== null && (
           <>
             {i18n.t("At the ear with the active part off")}{" "}
-            <b className="mono">{formatLevel(summary.atEarDb, locale, summary.atEarBound)}</b>,{" "}
+            <b className="mono">
+              {formatLevel(summary.atEarOffDb ?? summary.atEarDb, locale, summary.atEarBound)}
+            </b>
+            ,{" "}
             {i18n.t("with it on")}{" "}
             <b className="mono">{formatLevel(summary.atEarActiveDb, locale, summary.atEarBound)}</b>
             {". "}

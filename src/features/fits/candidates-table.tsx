@@ -69,10 +69,20 @@ export function CandidatesTable({
     {
       id: "word",
       head: i18n.t("While worn"),
-      cell: ({ word, wornDb }) => (
+      unit: "dB",
+      cell: ({ word, wornDb, wornIn, twaDb }) => (
         <ProtectorWord
           word={word}
-          beneath={wornDb === null ? undefined : `${formatLevel(wornDb, locale)} dB`}
+          beneath={
+            wornDb === null
+              ? undefined
+              : [
+                  `${wornIn ?? ""} ${formatLevel(wornDb, locale)}`.trim(),
+                  twaDb !== null && i18n.t("shift {twa}", { twa: formatLevel(twaDb, locale) }),
+                ]
+                  .filter(Boolean)
+                  .join(", ")
+          }
         />
       ),
     },

@@ -16,6 +16,7 @@ const day = (facts: Partial<OwnDay> = {}): OwnDay => ({
   outsideDb: 96.4,
   outsideBound: "exact",
   atEarDb: 79.2,
+  atEarOffDb: null,
   atEarBound: "exact",
   atEarActiveDb: null,
   atEarAsWorkedDb: null,

@@ -4,6 +4,7 @@ import type { UseFormReturn } from "react-hook-form";
 import type { z } from "zod";
 import { formatNumber } from "../../../shared/format/number";
 import { issueText } from "../../../shared/problems/issue-text";
+import { recordingText } from "../../../shared/recordings/recording-text";
 import {
   CHECK_FILE_LIMIT_BYTES,
   type MicrophoneCheckView,
@@ -119,7 +120,8 @@ export function MicrophoneCheckForm({
           for (const issue of error instanceof ApiError ? error.issues : []) {
             const at = /^files\.(\d+)/.exec(issue.path);
             const place = at && places.filter((one) => files[one])[Number(at[1])];
-            if (place) setFaults((before) => ({ ...before, [place]: issueText(i18n, issue) }));
+            const text = recordingText(i18n, issue.code, issue.params) ?? issueText(i18n, issue);
+            if (place) setFaults((before) => ({ ...before, [place]: text }));
           }
         },
       },
