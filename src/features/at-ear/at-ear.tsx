@@ -21,7 +21,7 @@ import { paths } from "../../paths";
 import { ActiveInNoise } from "./active-in-noise";
 import { DelayGain } from "./delay-gain";
 import { methodInItsWay } from "./method-words";
-import { MethodsTable, SpreadLine } from "./methods-table";
+import { AllowanceLine, MethodsTable, SpreadLine } from "./methods-table";
 import { NominalDays } from "./nominal-days";
 import { firstTask, partnersOf, worn } from "./pairs";
 import { Programme } from "./programme";
@@ -133,6 +133,7 @@ export function AtEar({
                 onRetry={() => void refetch()}
               />
               {view && <SpreadLine view={view} />}
+              {view && <AllowanceLine view={view} />}
             </div>
           )}
           {tasks.error && <Failed error={tasks.error} onRetry={() => void tasks.refetch()} />}

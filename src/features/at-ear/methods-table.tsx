@@ -1,5 +1,5 @@
 import { useLingui } from "@lingui/react";
-import { formatLevel } from "../../../shared/format/level";
+import { formatLevel, formatLimit } from "../../../shared/format/level";
 import { actionValueDb, ruleSetVersion } from "../../../shared/rule-sets";
 import type { AtEarView, MethodRow } from "../../../shared/schemas/at-ear";
 import { type DataColumn, DataTable } from "../../components/data-table";
@@ -11,6 +11,22 @@ import { methodInItsWay, whyNot } from "./method-words";
 
 const rowKey = ({ method, protectedPct, derating, reachedBy }: MethodRow) =>
   [method, protectedPct, derating, reachedBy].join(" ");
+
+/** A flat allowance that the rule set has is on every level but that of an own fit. */
+export function AllowanceLine({ view }: { view: AtEarView }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const allowanceDb =
+    ruleSetVersion(view.ruleSetKey, view.ruleSetVersion)?.protection.allowanceDb ?? 0;
+  if (allowanceDb === 0) return null;
+  return (
+    <p className="picture-legend">
+      {i18n.t("Every level has the rule set’s {allowance} dB on it, but for an own fit.", {
+        allowance: formatLimit(allowanceDb, locale),
+      })}
+    </p>
+  );
+}
 
 /**
  * Every method with what it leaves at the ear: figures, and a tick each on the scale that all strips have, under one

@@ -61,7 +61,14 @@ export function CandidatesTable({
           <span className="beneath">
             {row.excludedBy
               ? exclusionWord(i18n, row.excludedBy)
-              : decidedWord(i18n, row.decidedBy)}
+              : [
+                  decidedWord(i18n, row.decidedBy),
+                  row.decidedBy === "margin" &&
+                    row.marginDb !== null &&
+                    formatLevelChange(row.marginDb, locale),
+                ]
+                  .filter(Boolean)
+                  .join(", ")}
           </span>
         </span>
       ),
