@@ -88,6 +88,8 @@ export type {
   WorkingValue,
 } from "./working-parts";
 
+import { whileWorn } from "./while-worn";
+
 /**
  * The working of a day's result, built on demand from the same inputs. Texts are messages of the catalogue.
  *
@@ -121,6 +123,9 @@ type Draft = Partial<Omit<WorkingStep, "number" | "title" | "equations" | "detai
     readonly equations: readonly Line[];
   })[];
 };
+
+const isOnLevel = ({ quantity }: Criterion): boolean =>
+  quantity === "lex-8h" || quantity === "dose" || quantity === "table-dose";
 
 class Builder {
   private readonly outside: Criterion;
@@ -180,7 +185,12 @@ class Builder {
 
   lines(): WorkingLine[] {
     const { evaluation } = this;
-    const atEarResult = this.resultsJudged("at-the-ear").find(({ levelDb }) => levelDb !== null);
+    // The criterion on the level, known or not: a peak's verdict says nothing of it.
+    const atEarResults = this.resultsJudged("at-the-ear");
+    const atEarResult =
+      atEarResults.find((result) => isOnLevel(criterionOf(this.governing, result))) ??
+      atEarResults.find(({ levelDb }) => levelDb !== null);
+    const worn = whileWorn(evaluation);
     const [own, others] = this.outsideResults();
     const outsideResult = worstOf(own);
     const deciding = evaluation.tasks.find(
@@ -192,7 +202,10 @@ class Builder {
       {
         id: "at-the-ear",
         title: text(/*i18n*/ "At the ear"),
-        level: boundedLevel(evaluation.atEarDb, this.atEarBound()),
+        level: boundedLevel(
+          evaluation.counted ? evaluation.counted.atEarDb : evaluation.atEarDb,
+          this.atEarBound(),
+        ),
         uncertainty: this.atEarBound() === null ? uncertainty : null,
         outcome: atEarResult ? verdict(atEarResult) : null,
         remark: atEarResult ? this.remarkOn(atEarResult) : null,
@@ -202,7 +215,7 @@ class Builder {
       lines.push({
         id: "protector",
         title: text(/*i18n*/ "Protector, while worn"),
-        level: level(deciding?.wornDb ?? null),
+        level: boundedLevel(worn.levelDb, worn.bound === "exact" ? null : worn.bound),
         uncertainty: null,
         outcome: evaluation.word ? { kind: "protector-word", word: evaluation.word } : null,
         remark: deciding

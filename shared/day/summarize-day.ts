@@ -3,9 +3,9 @@ import type {
   DayEvaluation,
   DayInput,
   RuleSetVersion,
-  TaskAtEar,
   Verdict,
 } from "../acoustics/types";
+import { whileWorn } from "../acoustics/while-worn";
 import type { DayFigures } from "../schemas/finding";
 
 /** The one word for several criteria: what is certain and worst, before what is open, before what is fine. */
@@ -23,19 +23,6 @@ function ownTargetDb(
 ): number | null {
   if (personalTargetDb === null || targetDb === null || adequacy === "not-stated") return null;
   return personalTargetDb < targetDb ? personalTargetDb : null;
-}
-
-/** While worn in the deciding task: where only bounds are known the one on the day's own side, if that is not open. */
-function whileWorn(
-  deciding: TaskAtEar | undefined,
-  bound: DayEvaluation["atEarBound"],
-): Pick<DayFigures, "whileWornDb" | "whileWornBound"> {
-  const range = deciding?.wornRangeDb;
-  if (!range) return { whileWornDb: deciding?.wornDb ?? null, whileWornBound: "exact" };
-  const { leastDb, mostDb } = range;
-  return mostDb === null || (bound === "lower" && leastDb !== null)
-    ? { whileWornDb: leastDb, whileWornBound: "lower" }
-    : { whileWornDb: mostDb, whileWornBound: "upper" };
 }
 
 const levelQuantities: ReadonlySet<string | undefined> = new Set(["lex-8h", "dose", "table-dose"]);
@@ -60,9 +47,7 @@ export function summarizeDay(
   const dose = outside.find(({ dosePct }) => dosePct !== null);
   const atEar = levels.filter(({ judged }) => judged === "at-the-ear");
   const tasks = input.shifts.flatMap((shift) => shift.tasks);
-  const deciding = evaluation.tasks.find(
-    ({ timedTaskId }) => timedTaskId === evaluation.decidingTaskId,
-  );
+  const worn = whileWorn(evaluation);
   const decidingTask = tasks.find(({ id }) => id === evaluation.decidingTaskId);
   return {
     date: evaluation.date,
@@ -74,9 +59,8 @@ export function summarizeDay(
     atEarActiveDb: evaluation.atEarActiveDb,
     atEarAsWorkedDb: evaluation.atEarAsWorkedDb,
     uncertaintyDb: evaluation.uncertaintyDb,
-    ...(evaluation.counted
-      ? { whileWornDb: evaluation.counted.whileWornDb, whileWornBound: "exact" as const }
-      : whileWorn(deciding, evaluation.atEarBound)),
+    whileWornDb: worn.levelDb,
+    whileWornBound: worn.bound,
     verdictOutside: headline(outside),
     verdictAtEar: headline(atEar),
     word: evaluation.word,

@@ -7,6 +7,7 @@ import { formatDate } from "../../shared/format/date";
 import { formatWholeLevel } from "../../shared/format/level";
 import type { Locale } from "../../shared/i18n/index";
 import { ruleSetVersion } from "../../shared/rule-sets";
+import { IsoDate } from "../../shared/schemas/common";
 import type { ResultView } from "../../shared/schemas/result";
 import { Empty } from "../components/empty";
 import { Failed } from "../components/failed";
@@ -29,7 +30,9 @@ import "../styles/wearing.css";
 export function Component() {
   const { i18n } = useLingui();
   const { workerId } = useUser();
-  const { date = "" } = useParams();
+  const { date: asked = "" } = useParams();
+  // An address with something else in it names no day: the answer is the one for a day that is not there.
+  const date = IsoDate.safeParse(asked).success ? asked : "0001-01-01";
   if (workerId === null)
     return (
       <PageBody size="worker">

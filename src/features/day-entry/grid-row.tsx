@@ -356,7 +356,7 @@ function besideWords(
   return typed?.kind === "level" &&
     readingDb !== null &&
     Math.abs(readingDb - typed.levelDb) >= SAME_DB
-    ? i18n.t("8 h: {reading}, tasks {level}", { reading: formatLevel(readingDb, locale), level })
+    ? i18n.t("8 h: {reading}", { reading: formatLevel(readingDb, locale) })
     : i18n.t("tasks {level}, {gap}", { level, gap });
 }
 

@@ -120,8 +120,7 @@ export function WorkedOut({
             <b className="mono">
               {formatLevel(summary.atEarOffDb ?? summary.atEarDb, locale, summary.atEarBound)}
             </b>
-            ,{" "}
-            {i18n.t("with it on")}{" "}
+            , {i18n.t("with it on")}{" "}
             <b className="mono">{formatLevel(summary.atEarActiveDb, locale, summary.atEarBound)}</b>
             {". "}
           </>

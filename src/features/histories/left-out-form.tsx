@@ -58,6 +58,18 @@ export function useLeftOut(history: HistoryView, drawing: Drawing) {
   const isAsked = isAny && history.covers !== "part";
   const { leftOut } = form.watch();
   const seen = useRef(history.revision);
+  // What was said holds for the stretches that it was said of: others are asked about anew.
+  const spans = drawing.drawn
+    .filter(({ kind }) => kind === "left-out")
+    .map(({ fromS, toS }) => `${fromS}-${toS}`)
+    .join();
+  const saidOf = useRef(spans);
+  useEffect(() => {
+    if (saidOf.current === spans) return;
+    saidOf.current = spans;
+    if (seen.current === history.revision)
+      form.setValue("leftOut", { how: "unknown", levelDb: null }, { shouldDirty: true });
+  }, [form, history.revision, spans]);
   useEffect(() => {
     // What was typed before a reload stands over the same revision.
     if (seen.current === history.revision) return;
