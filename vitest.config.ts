@@ -15,6 +15,7 @@ export default defineConfig({
             "tests/*.test.ts",
           ],
           setupFiles: published,
+          testTimeout: 30_000,
         },
       },
       {
@@ -22,6 +23,7 @@ export default defineConfig({
           name: "published",
           include: ["tests/published/**/*.test.ts"],
           setupFiles: published,
+          testTimeout: 30_000,
         },
       },
       {
@@ -30,6 +32,7 @@ export default defineConfig({
           include: ["src/**/*.test.{ts,tsx}"],
           environment: "jsdom",
           setupFiles: "./tests/setup/client.ts",
+          testTimeout: 30_000,
         },
       },
       {
