@@ -26,7 +26,7 @@ const WIDE_PX: Widths = {
 };
 /** Under a rule of doses: a figure and its verdict beside one another, and at the ear neither verdict nor uncertainty. */
 const DOSE_PX: Pick<Widths, "ear" | "outside" | "word"> = { ear: 96, outside: 138, word: 132 };
-/** "Teardown: Sedge band" in one line: room to spare goes there first. */
+/** "Sedge band: Teardown" in one line: room to spare goes there first. */
 const PROTECTOR_WISH_PX = 152;
 /** The deciding task and its level have one line: half of what is left then goes there, up to this. */
 const MOST_WORD_PX = 156;

@@ -374,9 +374,9 @@ function ProtectorContent({ found }: { found: RowEvaluation }) {
   );
 }
 
-/** The task first: it is what tells it from the protector above, and narrow columns cut the end. */
+/** The protector first: it is what the column is about, and narrow columns cut the end. */
 function ForTasks({ name, tasks }: { name: string; tasks: string }) {
-  const words = `${tasks}: ${name}`;
+  const words = `${name}: ${tasks}`;
   return (
     <span className="under clip" title={words}>
       {words}
