@@ -185,7 +185,7 @@ describe("what a history comes to", () => {
     open();
     expect(
       await screen.findByText(
-        "LAeq 88.0 dB over 7 h 50 min; dose 98 % against upper action value, 85, exact; 10 min left out.",
+        "LAeq 88.0 dB over 7 h 50 min; dose of what is counted 98 % against upper action value, 85, exact; 10 min left out.",
         { normalizer: (text) => text.replace(/[\u00a0\u2009]/g, " ") },
       ),
     ).toBeVisible();

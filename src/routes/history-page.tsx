@@ -415,16 +415,20 @@ function headText(
           duration,
         }),
   );
-  const [governing] = counted.readings;
-  if (governing)
-    parts.push(
-      i18n.t("dose {dose} against {criterion}, {bound}", {
-        dose: formatBoundedDose(governing.dosePct, governing.bound, locale),
-        criterion: withinSentence(criterionText(i18n, governing, locale), locale),
-        bound: boundWord(i18n, governing.bound),
-      }),
-    );
   const outS = everything.durationS - counted.durationS;
+  const [governing] = counted.readings;
+  if (governing) {
+    const values = {
+      dose: formatBoundedDose(governing.dosePct, governing.bound, locale),
+      criterion: withinSentence(criterionText(i18n, governing, locale), locale),
+      bound: boundWord(i18n, governing.bound),
+    };
+    parts.push(
+      outS > 0
+        ? i18n.t("dose of what is counted {dose} against {criterion}, {bound}", values)
+        : i18n.t("dose {dose} against {criterion}, {bound}", values),
+    );
+  }
   const out = { duration: lengthText(i18n, outS, locale) };
   if (outS > 0)
     parts.push(

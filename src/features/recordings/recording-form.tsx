@@ -125,7 +125,10 @@ export function RecordingForm({
     if (toneFile && !task) return i18n.t("Choose the task first, then the tone.");
     const issue = fileIssue(measured.error);
     if (issue) return recordingText(i18n, issue.code, issue.params) ?? issueText(i18n, issue);
-    return isToneMissing && !tone && !measured.isPending ? i18n.t("Measure the tone first.") : null;
+    if (!isToneMissing || tone) return null;
+    return measured.isPending
+      ? i18n.t("The tone is still being measured: send again when its figure stands here.")
+      : i18n.t("Measure the tone first.");
   }
 
   const submit = form.handleSubmit((filled) => {
