@@ -179,9 +179,9 @@ test("the verdict changes once the site's policy credits a passed check", async 
   await page.getByRole("button", { name: "See who changes verdict" }).click();
   await page.getByText(WORKER).first().waitFor({ timeout: 60_000 });
   await page.getByRole("button", { name: "Save and compute anew" }).click();
-  await computed();
-  const figures = await figuresOf();
-  expect(figures.verdictAtEar).not.toBe("over");
+  await expect
+    .poll(async () => (await figuresOf()).verdictAtEar, { timeout: 90_000 })
+    .not.toBe("over");
 });
 
 test("a fit that fails opens a finding, and its refit closes it", async () => {
