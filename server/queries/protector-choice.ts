@@ -12,7 +12,15 @@ import { only } from "../lib/only";
 import { type Actor, visible } from "../lib/policy";
 import { workerPolicy } from "../policies";
 import { gridTasks } from "./day-grid";
-import { fitsOf, lawAtEar, noisesOf, offersAt, pairsOf, requiredGear } from "./register-offers";
+import {
+  bareTask,
+  fitsOf,
+  lawAtEar,
+  noisesOf,
+  offersAt,
+  pairsOf,
+  requiredGear,
+} from "./register-offers";
 import { settingsInForce } from "./site-settings";
 
 /** Whose noise protectors are compared for. */
@@ -51,24 +59,14 @@ export async function protectorChoice(
   if (!governing) throw new Error("a rule set in force has a version");
   const { adequacy, targetDb } = governing.protection;
 
-  const minutes = await minutesOf(subject);
+  const longestMin = subject.kind === "task" ? await longestNominalMin(subject.id) : null;
+  const minutes =
+    subject.kind === "task"
+      ? new Map([[subject.id, longestMin ?? ASSUMED_MIN]])
+      : await nominalMinutes(subject.id);
   const tasks = (await gridTasks(siteId, date)).flatMap((task): TimedTask[] => {
     const durationMin = minutes.get(task.id);
-    if (durationMin === undefined) return [];
-    const { id, name, level, zone } = task;
-    return [
-      {
-        id,
-        taskId: id,
-        name,
-        durationMin,
-        level,
-        zone,
-        protection: null,
-        wornPct: 100,
-        wornIsShiftWide: false,
-      },
-    ];
+    return durationMin === undefined ? [] : [bareTask(task, durationMin)];
   });
   // A task by itself was chosen because of its noise, whatever its level.
   const noises = noisesOf(tasks, adequacy, { site: settings, mustWear: subject.kind === "task" });
@@ -97,7 +95,7 @@ export async function protectorChoice(
       durationMin,
       hasSpectrum: level.octaveBandsDb !== null,
     })),
-    isDurationAssumed: subject.kind === "task" && (await longestNominalMin(subject.id)) === null,
+    isDurationAssumed: subject.kind === "task" && longestMin === null,
     requiredGear: gear,
     singles: rank(singles),
     pairs: rank(pairs)
@@ -108,9 +106,8 @@ export async function protectorChoice(
   };
 }
 
-/** How long each task of the subject lasts, in minutes by task. */
-async function minutesOf({ kind, id }: ChoiceSubject): Promise<Map<string, number>> {
-  if (kind === "task") return new Map([[id, (await longestNominalMin(id)) ?? ASSUMED_MIN]]);
+/** How long each task of a job's nominal day lasts, in minutes by task. */
+async function nominalMinutes(id: string): Promise<Map<string, number>> {
   const found = await rows<{ taskId: string; durationMin: number }>(
     `SELECT task_id AS "taskId", duration_min AS "durationMin" FROM job_tasks WHERE job_id = :id`,
     { id },

@@ -14,6 +14,7 @@ import type {
   RuleSetVersion,
   TimedTask,
 } from "../../shared/acoustics/types";
+import type { KnownTask } from "../../shared/day/build-day-input";
 import type { ProtectorUse } from "../../shared/schemas/protector";
 import { rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
@@ -114,6 +115,22 @@ export const lawAtEar = (governing: RuleSetVersion): ExchangeLaw => ({
   ...lawOf(outsideCriterion(governing)),
   table: null,
   thresholdDb: null,
+});
+
+/** A task of a nominal day as it is before anybody wears anything. */
+export const bareTask = (
+  { id, name, level, zone }: Pick<KnownTask, "id" | "name" | "level" | "zone">,
+  durationMin: number,
+): TimedTask => ({
+  id,
+  taskId: id,
+  name,
+  durationMin,
+  level,
+  zone,
+  protection: null,
+  wornPct: 100,
+  wornIsShiftWide: false,
 });
 
 export type Noise = TimedTask & { level: NonNullable<TimedTask["level"]> };

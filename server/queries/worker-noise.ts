@@ -7,6 +7,7 @@ import { rows } from "../lib/db";
 import type { Worker } from "../models/worker";
 import { gridTasks } from "./day-grid";
 import { type DayRefs, hydrateDays } from "./day-inputs";
+import { bareTask } from "./register-offers";
 import { settingsInForce } from "./site-settings";
 
 type Person = Pick<Worker, "id" | "siteId" | "jobId" | "mustWear" | "personalTargetDb">;
@@ -131,21 +132,7 @@ async function nominalDay(
   const known = new Map((await gridTasks(worker.siteId, date)).map((task) => [task.id, task]));
   const tasks = nominal.flatMap(({ taskId, durationMin }): TimedTask[] => {
     const task = known.get(taskId);
-    if (!task) return [];
-    const { name, zone, level } = task;
-    return [
-      {
-        id: taskId,
-        taskId,
-        name,
-        durationMin,
-        level,
-        zone,
-        protection: null,
-        wornPct: 100,
-        wornIsShiftWide: false,
-      },
-    ];
+    return task ? [bareTask(task, durationMin)] : [];
   });
   if (tasks.length === 0) return [];
   return [
