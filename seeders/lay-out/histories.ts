@@ -67,7 +67,10 @@ export async function layOutHistories(demo: Demo, story: DatedStory): Promise<vo
   await layOutFineHistory(demo);
 }
 
-/** The latest shift of one of the workers that nothing else tells of: no departure, no run, and the instrument at hand. */
+/**
+ * The latest shift of one of the workers that nothing else tells of: no departure, no run of the shift, and the instrument
+ * at hand. Whose samples a survey drew is chance, and a sample is no reading of the shift.
+ */
 async function findShift(
   demo: Demo,
   story: DatedStory,
@@ -83,7 +86,8 @@ async function findShift(
        FROM shifts s JOIN workers w ON w.id = s.worker_id JOIN shift_tasks t ON t.shift_revision_id = s.current_revision_id JOIN tasks k ON k.id = t.task_id
        JOIN LATERAL (SELECT * FROM task_levels x WHERE x.task_id = t.task_id AND x.effective_from <= s.date ORDER BY x.effective_from DESC, x.number DESC LIMIT 1) l ON TRUE
        WHERE w.employee_number IN (:workers) AND s.date BETWEEN :from AND :to AND NOT s.is_void
-         AND NOT EXISTS (SELECT 1 FROM runs r WHERE r.date = s.date AND (r.worker_id = w.id OR r.instrument_id = :instrumentId))
+         AND NOT EXISTS (SELECT 1 FROM runs r JOIN run_revisions v ON v.id = r.current_revision_id
+           WHERE r.date = s.date AND ((r.worker_id = w.id AND v.covers <> 'part') OR r.instrument_id = :instrumentId))
        GROUP BY w.id, s.id ORDER BY s.date DESC, w.employee_number`,
       {
         workers,
