@@ -1,7 +1,7 @@
 /**
  * npm run bench -- [--shifts=N] [part…]
  * Measures what the issue of speed is about, each figure beside a bound that is measured in the same run: engine,
- * history, recordings, microphones, choosing, pages, screens, saving, export, histories. Sets up a database of its own, filled with scale data,
+ * history, recordings, microphones, choosing, pages, screens, saving, trail, export, histories. Sets up a database of its own, filled with scale data,
  * and removes it. At the size that it has unless told otherwise, the whole takes less than five minutes on two cores with
  * nothing else to do.
  */
@@ -30,12 +30,13 @@ const allParts = [
   "pages",
   "screens",
   "saving",
+  "trail",
   "export",
   "histories",
 ];
 /** As one bundle, as browsers and servers run it: a loader's helpers would be measured with it. */
 const bundled = ["engine", "history", "recordings", "microphones", "choosing"];
-const needDatabase = ["screens", "saving", "export", "histories"];
+const needDatabase = ["screens", "saving", "trail", "export", "histories"];
 
 const given = process.argv.slice(2);
 const shifts = Number(given.find((arg) => arg.startsWith("--shifts="))?.slice(9) ?? DEFAULT_SHIFTS);

@@ -15,6 +15,12 @@ import { samplingPatterns } from "./20261201160000-sampling-patterns";
 import { protectorsLookedAt } from "./20261201161000-protectors-looked-at";
 import { boundsOfFigures } from "./20261201170000-bounds-of-figures";
 import { leftOutTime } from "./20261201171000-left-out-time";
+import { rowTrail } from "./20261202090000-row-trail";
+import { firstFits } from "./20261202090500-first-fits";
+import { followUp } from "./20261202092000-follow-up";
+import { training } from "./20261202092100-training";
+import { resultLetters } from "./20261202094000-result-letters";
+import { plans } from "./20261202096000-plans";
 
 /** In the order in which they run. */
 export const migrations = [
@@ -35,4 +41,10 @@ export const migrations = [
   protectorsLookedAt,
   boundsOfFigures,
   leftOutTime,
+  rowTrail,
+  firstFits,
+  resultLetters,
+  followUp,
+  training,
+  plans,
 ];

@@ -7,12 +7,22 @@
 import { existsSync, mkdirSync, readFileSync, renameSync, rmSync, writeFileSync } from "node:fs";
 import { join } from "node:path";
 import { compileCatalogues } from "./lib/catalogues.mjs";
+import { bundleCheckPage } from "./lib/check-page.mjs";
 import { runMain } from "./lib/failure.mjs";
 import { withLock } from "./lib/lock.mjs";
 import { lockFolder, projectFolder } from "./lib/project.mjs";
 import { hashSources } from "./lib/sources.mjs";
 
-const entryPoints = ["web", "work", "migrate", "setup", "seed-demo", "backup", "restore"];
+const entryPoints = [
+  "web",
+  "work",
+  "migrate",
+  "setup",
+  "seed-demo",
+  "backup",
+  "restore",
+  "verify-trail",
+];
 /** What runs in threads, each a file beside the entry points (server/lib/run-worker.ts). */
 const threads = {
   "history-worker": "histories/history-worker",
@@ -45,6 +55,7 @@ async function bundleServer(folder) {
     sourcemap: true,
     logLevel: "warning",
   });
+  writeFileSync(join(folder, "check.html"), await bundleCheckPage());
 }
 
 async function bundleClient(folder) {

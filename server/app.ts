@@ -109,6 +109,8 @@ export function createApp(
   // Two requests a sign-in: far more than any crew, and what does not end well has a bound of its own (auth/routes.ts).
   api.use(["/auth/sign-in", "/auth/callback"], limitTries("sign-in", 1200, 10));
   api.use("/auth/worker-code", limitTries("worker-code", 10, 15));
+  // Behind one address a whole works may read its letters; a secret of 24 bytes is not guessed at this rate.
+  api.use("/acknowledgements", limitTries("acknowledgement", 120, 10));
   api.use(...sessions(config));
   api.use(refuseForgery);
   api.use(express.json({ limit: "4mb" }));

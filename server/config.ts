@@ -84,6 +84,8 @@ const processes = {
     TRUST_PROXY: trustProxy,
   }),
   work: z.object({ ...database, ...mail }),
+  /** What only reads the database. */
+  database: z.object({ DATABASE_URL: database.DATABASE_URL }),
   owner: z.object({
     ...database,
     OWNER_DATABASE_URL: address(
@@ -107,6 +109,7 @@ function conflicts(process_: ProcessName, given: NodeJS.ProcessEnv): Record<stri
   const found: Record<string, string> = {};
   if (
     process_ !== "owner" &&
+    process_ !== "database" &&
     NODE_ENV === "production" &&
     PUBLIC_URL.startsWith("http:") &&
     !isOnThisMachine(PUBLIC_URL)

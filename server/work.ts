@@ -7,8 +7,9 @@ import { checkMicrophones } from "./jobs/check-microphones";
 import { lookAfter } from "./jobs/look-after";
 import { readHistoryImport } from "./jobs/read-history";
 import { recomputeStaleDays } from "./jobs/recompute-stale-days";
+import { sendEscalation } from "./jobs/send-escalation";
 import { sendNotice } from "./jobs/send-notice";
-import { sealEvents } from "./lib/audit";
+import { sealTrail } from "./lib/audit";
 import { connect, inTransaction, organizationIds, sequelize } from "./lib/db";
 import { openFileStore } from "./lib/file-store";
 import type { JobPayloads } from "./lib/jobs";
@@ -45,6 +46,9 @@ const taskList: TaskList = {
     recomputeStaleDays(organizationId, () => isStopping),
   ),
   "send-notice": job("send-notice", (payload) => sendNotice(payload, mailer, config.PUBLIC_URL)),
+  "send-escalation": job("send-escalation", (payload) =>
+    sendEscalation(payload, mailer, config.PUBLIC_URL),
+  ),
   "read-history": job("read-history", (payload) => readHistoryImport(payload)),
   "analyse-recording": job("analyse-recording", (payload) => analyseStoredRecording(payload)),
   "check-microphones": job("check-microphones", (payload) => checkMicrophones(payload)),
@@ -82,7 +86,7 @@ async function seal(): Promise<void> {
       for (const organizationId of await organizationIds()) {
         while (
           !isStopping &&
-          (await inTransaction({ organizationId }, () => sealEvents(organizationId))) === 5000
+          (await inTransaction({ organizationId }, () => sealTrail(organizationId))) === 5000
         );
       }
     } catch (error) {

@@ -4,6 +4,8 @@ export const paths = {
   signIn: "/sign-in",
   signedOut: "/signed-out",
   noAccess: "/no-access",
+  /** Whoever has a letter by mail, without signing in. */
+  acknowledge: (secret: string) => `/acknowledge/${secret}`,
 
   waiting: "/waiting",
   days: "/days",
@@ -20,7 +22,11 @@ export const paths = {
     const use = taskId === undefined ? "" : `&use=${encodeURIComponent(`task ${taskId}`)}`;
     return `/workers/${workerId}?assign=${modelIds.join(",")}${use}#protectors`;
   },
+  /** Joiners, movers and leavers from a file. */
+  roster: "/roster",
   newWorker: "/workers/new",
+  trainings: "/training",
+  training: (id: string) => `/training/${id}`,
   changeWorker: (id: string) => `/workers/${id}/change`,
   /** Two microphones at one of the worker's ears: a new check, and one that was sent in. */
   microphoneCheck: (workerId: string) => `/workers/${workerId}/microphone-check`,
@@ -31,6 +37,8 @@ export const paths = {
   shift: (id: string) => `/shifts/${id}`,
   findings: "/findings",
   finding: (id: string) => `/findings/${id}`,
+  letters: "/letters",
+  letter: (id: string) => `/letters/${id}`,
   runs: "/measuring/runs",
   newRun: "/measuring/runs/new",
   run: (id: string) => `/measuring/runs/${id}`,
@@ -75,6 +83,11 @@ export const paths = {
     return `/protectors/${id}?task=${of.taskId}${outer}${worker}#at-ear`;
   },
 
+  plans: "/plans",
+  plan: (id: string) => `/plans/${id}`,
+  tryChanges: "/plans/try",
+  tryChangesFor: (kind: "worker" | "job" | "area", id: string) => `/plans/try?${kind}=${id}`,
+
   rules: "/rules",
   site: (id: string) => `/rules/sites/${id}`,
   areas: "/rules/areas",
@@ -91,6 +104,7 @@ export const paths = {
   myDay: (date: string) => `/me/days/${date}`,
   yearFile: "/year-file",
   trail: "/trail",
+  trailCheck: "/trail/check",
   people: "/people",
   person: (id: string) => `/people/${id}`,
   sites: "/sites",

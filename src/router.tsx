@@ -53,6 +53,7 @@ export function createRoutes(queryClient: QueryClient, i18n: I18n): RouteObject[
     pageRoute(paths.signIn, () => import("./routes/sign-in")),
     pageRoute(paths.signedOut, () => import("./routes/signed-out")),
     pageRoute(paths.noAccess, () => import("./routes/no-access")),
+    pageRoute(paths.acknowledge(":secret"), () => import("./routes/acknowledge-page")),
     {
       element: <LazyPage load={loadSignedIn} />,
       handle: loadSignedIn,

@@ -66,6 +66,9 @@ export const ROUNDS: readonly {
     looks: [
       { worker: "4403", task: "Grinding", worn: 5, seen: 5 },
       { worker: "4419", task: "Grinding", worn: 4, seen: 5 },
+      { worker: "4422", task: "Grinding", worn: 5, seen: 5 },
+      { worker: "4422", task: "Chipping", worn: 4, seen: 4 },
+      { worker: "4422", task: "Linishing", worn: 5, seen: 5 },
       { worker: "4425", task: "Chipping", worn: 5, seen: 5 },
       { worker: "4431", task: "Chipping", worn: 3, seen: 5 },
     ],

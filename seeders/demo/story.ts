@@ -420,6 +420,11 @@ export const STORY: readonly Chapter[] = [
     ],
   },
   {
+    title: "L. Grzelak's wearing time was left blank: what the round of the week before saw counts",
+    departures: [{ worker: "4422", day: [4, 2], worn: null }],
+    steps: [],
+  },
+  {
     title: "L. Mbeki-Stroud's dosimeter says far more than the tasks do",
     departures: [
       {

@@ -13,8 +13,9 @@ import { layOutHistories } from "./histories";
 import { measureBeforehand, measureSince, sendOutToday } from "./measurements";
 import { leaveSomeToTell, markSent, tellInThePast } from "./notices";
 import { writePeopleFile } from "./people-file";
+import { layOutPlans } from "./plans";
 import { Demo, known, layOutProgramme } from "./programme";
-import { layOutProtection } from "./protection";
+import { layOutProtection, layOutRounds } from "./protection";
 import { layOutRecordings } from "./recordings";
 import { takeStep } from "./steps";
 import { dateStory } from "./story";
@@ -55,6 +56,7 @@ export async function layOutDemo({
   const demo = new Demo(now, Math.round(months * DAYS_A_MONTH));
   await layOutProgramme(demo);
   await measureBeforehand(demo);
+  await layOutRounds(demo);
   const story = dateStory(demo);
   /** On the site's own clock: who is told of a day is told after it was noticed there. */
   const morningOf = (date: string, site: SiteKey) =>
@@ -101,6 +103,7 @@ export async function layOutDemo({
   await layOutFits(demo);
   await layOutProtection(demo);
   await compute(await staleDays(demo), new Date(now.getTime() - 60_000));
+  await layOutPlans(demo);
   await sendOutToday(demo, now);
   await tellOfCalibration(demo);
   await markSent(demo, now, publicUrl);

@@ -27,11 +27,10 @@ import { type Demo, known, siteOfWorker, taskKey } from "./programme";
 /** Two kinds are always on the counter, whatever is taken in the end. */
 const ALSO_OFFERED = ["Alder foam", "Fenmuff low", "Sedge band"];
 
-/** Stock, issues, rounds, warning signals and tests: what is known of protectors beside their labels. */
+/** Stock, issues, warning signals and tests: what is known of protectors beside their labels. */
 export async function layOutProtection(demo: Demo): Promise<void> {
   await layOutStock(demo);
   await layOutIssues(demo);
-  await layOutRounds(demo);
   await layOutSignals(demo);
   await layOutTests(demo);
 }
@@ -83,8 +82,10 @@ async function layOutIssues(demo: Demo): Promise<void> {
   }
 }
 
-async function layOutRounds(demo: Demo): Promise<void> {
+/** Before the days that rest on them: what was seen is there when a shift leaves its wearing time blank. */
+export async function layOutRounds(demo: Demo): Promise<void> {
   for (const { site, daysAgo, note, looks } of ROUNDS) {
+    if (daysAgo >= demo.spanDays) continue;
     const calendar = demo.calendar(site);
     const seenOn = calendar.daysAgo(daysAgo);
     await demo.at(calendar.instant(seenOn, "11:20"), () =>

@@ -10,6 +10,8 @@ export async function dropUnusedFile(organizationId: string, fileId: string): Pr
        AND NOT EXISTS (SELECT 1 FROM run_files r WHERE r.file_id = f.id)
        AND NOT EXISTS (SELECT 1 FROM instrument_calibrations c WHERE c.certificate_file_id = f.id)
        AND NOT EXISTS (SELECT 1 FROM protector_files p WHERE p.file_id = f.id)
+       AND NOT EXISTS (SELECT 1 FROM finding_files d WHERE d.file_id = f.id)
+       AND NOT EXISTS (SELECT 1 FROM training_sessions t WHERE t.file_id = f.id)
        AND NOT EXISTS (SELECT 1 FROM recordings a WHERE a.file_id = f.id)
        AND NOT EXISTS (SELECT 1 FROM microphone_check_files k WHERE k.file_id = f.id)
      RETURNING encode(f.sha256, 'hex') AS sha256`,

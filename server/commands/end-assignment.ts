@@ -4,9 +4,13 @@ import { checkSpan, daysFromTo } from "../lib/date-range";
 import { execute } from "../lib/db";
 import type { Actor } from "../lib/policy";
 import type { AssignmentRow } from "../queries/assignments";
+import { followFits } from "./follow-fits";
 import { markDaysStale } from "./mark-days-stale";
 
-/** The last day of an assignment, earlier or later than it was; the days between are judged again. */
+/**
+ * The last day of an assignment, earlier or later than it was; the days between are judged again, and findings on the fit
+ * of what is worn no longer close.
+ */
 export async function endAssignment(
   actor: Actor,
   assignment: AssignmentRow,
@@ -28,4 +32,5 @@ export async function endAssignment(
   });
   const firstMoved = addDays(before !== null && before < toDate ? before : toDate, 1);
   await markDaysStale(actor.organizationId, { workerId, fromDate: firstMoved });
+  await followFits(actor.organizationId, { workerId, modelId: assignment.innerModelId });
 }

@@ -5,7 +5,14 @@ import { execute, rows } from "../lib/db";
 import { fitDues } from "../queries/fit-dues";
 
 /** What the program itself closes these findings for; whatever else is there, a person wrote. */
-const OWN_REASONS = ["refitted", "other-issued", "evidence-gone", "fit-tested", "no-longer-due"];
+const OWN_REASONS = [
+  "refitted",
+  "other-issued",
+  "no-longer-worn",
+  "evidence-gone",
+  "fit-tested",
+  "no-longer-due",
+];
 const ownReasons = OWN_REASONS.map((reason) => `'${reason}'`).join(", ");
 
 /** When a fit that failed has to be mended, where the site states nothing. Common practice, no source. */
@@ -25,14 +32,16 @@ interface Standing {
   } | null;
   /** Another model that fits was handed out since, and this one is no longer worn. */
   isAnswered: boolean;
+  /** It was worn after the test, and is no longer or for the last day, without another one that fits. */
+  isLaidDown: boolean;
   open: { id: string; state: FindingState; testId: string } | null;
   closed: { id: string; testId: string; isByPerson: boolean; wasWithdrawn: boolean } | null;
 }
 
 /**
  * Holds the findings on a worker's fits to what the tests and issues show now: one open finding per model that does not
- * fit, closed by a refit or by another model that fits; and those of tests that are due. Called after every change of a
- * test or an issue, in its transaction.
+ * fit, closed by a refit, by another model that fits, or because the model is worn no longer; and those of tests that
+ * are due. Called after every change of a test, an issue or an assignment, in its transaction.
  */
 export async function followFits(
   organizationId: string,
@@ -41,7 +50,7 @@ export async function followFits(
   // Two tests of one worker at once take their turns.
   await rows("SELECT 1 FROM workers WHERE id = :workerId FOR UPDATE", { workerId });
   for (const standing of await standings(workerId, modelId)) {
-    if (standing.test && !standing.test.hasPassed && !standing.isAnswered)
+    if (standing.test && !standing.test.hasPassed && !standing.isAnswered && !standing.isLaidDown)
       await openFailed(organizationId, workerId, standing, standing.test);
     else if (standing.open) await closeFailed(organizationId, standing, standing.open);
   }
@@ -51,13 +60,16 @@ export async function followFits(
 
 /** The model in question and those that are open: what is handed out may answer another. */
 function standings(workerId: string, modelId: string): Promise<Standing[]> {
+  const ofModel = "a.worker_id = w.id AND m.id IN (a.inner_model_id, a.outer_model_id)";
+  const isWorn = (until: string) =>
+    `EXISTS (SELECT 1 FROM assignments a WHERE ${ofModel} AND coalesce(upper(a.valid) > ${until}, TRUE))`;
   return rows<Standing>(
     `SELECT m.id AS "modelId", m.name AS protector, w.site_id AS "siteId", to_json(t) AS test, to_json(o) AS open, to_json(c) AS closed,
        EXISTS (SELECT 1 FROM protector_issues i JOIN fit_tests f ON f.id = i.fit_test_id AND NOT f.is_void
                JOIN fit_test_revisions v ON v.id = f.current_revision_id AND v.has_passed
                WHERE i.worker_id = w.id AND i.model_id <> m.id AND i.ended_on IS NULL AND i.issued_on >= t."testedOn")
-       AND NOT EXISTS (SELECT 1 FROM assignments a WHERE a.worker_id = w.id AND m.id IN (a.inner_model_id, a.outer_model_id)
-               AND coalesce(upper(a.valid) > current_date, TRUE)) AS "isAnswered"
+       AND NOT ${isWorn("current_date")} AS "isAnswered",
+       EXISTS (SELECT 1 FROM assignments a WHERE ${ofModel} AND upper(a.valid) > t."testedOn") AND NOT ${isWorn("current_date + 1")} AS "isLaidDown"
      FROM workers w JOIN protector_models m ON m.id = CAST(:modelId AS uuid) OR CAST(m.id AS text) IN (
        SELECT x.use_key FROM findings x WHERE x.worker_id = w.id AND x.kind = 'fit-failed' AND x.state <> 'closed')
      LEFT JOIN LATERAL (
@@ -119,10 +131,10 @@ async function openFailed(
   );
 }
 
-/** A refit or another device answers it whatever its state; evidence that was taken back closes only what nobody took up. */
+/** A refit, another device, or that it is worn no longer answers it whatever its state; evidence that was taken back closes only what nobody took up. */
 async function closeFailed(
   organizationId: string,
-  { test, isAnswered }: Standing,
+  { test, isAnswered, isLaidDown }: Standing,
   { id, state, testId }: NonNullable<Standing["open"]>,
 ): Promise<void> {
   const isWithdrawn = test === null || (test.hasPassed && test.id === testId);
@@ -136,7 +148,13 @@ async function closeFailed(
     if (noted > 0) await execute("UPDATE findings SET revision = revision + 1 WHERE id = $1", [id]);
     return;
   }
-  const reason = isWithdrawn ? "evidence-gone" : isAnswered ? "other-issued" : "refitted";
+  const reason = isWithdrawn
+    ? "evidence-gone"
+    : test.hasPassed
+      ? "refitted"
+      : isAnswered || !isLaidDown
+        ? "other-issued"
+        : "no-longer-worn";
   await execute(
     "UPDATE findings SET state = 'closed', closed_on = current_date, closing_reason = $2, revision = revision + 1 WHERE id = $1",
     [id, reason],
@@ -154,6 +172,18 @@ async function closeFailed(
       values: { from: state, to: "closed", text: reason },
     },
   );
+}
+
+/** Closes what is open on fits of devices whose assignment has run out by itself since. */
+export async function closeLaidDownFits(organizationId: string): Promise<void> {
+  const open = await rows<{ workerId: string; modelId: string }>(
+    `SELECT f.worker_id AS "workerId", f.use_key AS "modelId" FROM findings f
+     WHERE f.organization_id = :organizationId AND f.kind = 'fit-failed' AND f.state <> 'closed'
+       AND EXISTS (SELECT 1 FROM assignments a WHERE a.worker_id = f.worker_id AND f.use_key IN (a.inner_model_id::text, a.outer_model_id::text)
+         AND upper(a.valid) <= current_date + 1 AND upper(a.valid) > f.last_date)`,
+    { organizationId },
+  );
+  for (const of of open) await followFits(organizationId, of);
 }
 
 /** One open finding per worker and model whose test is due by the site's policy; of one worker, or of everybody. */

@@ -1,11 +1,12 @@
 import type { FindingState, FindingStepInput } from "../../shared/schemas/finding";
 import { recordAudit } from "../lib/audit";
-import { todayAt } from "../lib/calendar";
+import { dateIssues, todayAt } from "../lib/calendar";
 import { execute, row } from "../lib/db";
-import { AppError, stale } from "../lib/errors";
+import { AppError, issue, stale, unprocessable } from "../lib/errors";
 import type { Actor } from "../lib/policy";
 import type { Finding } from "../models/finding";
 import { findingView } from "../queries/finding-view";
+import { listOwners } from "../queries/follow-up";
 
 /** From where each step may be taken, and where it leads. Null: the state stays. */
 const steps: Record<
@@ -13,6 +14,7 @@ const steps: Record<
   { from: readonly FindingState[]; to: FindingState | null }
 > = {
   "take-in-hand": { from: ["new", "came-back", "done"], to: "in-hand" },
+  "hand-over": { from: ["new", "in-hand", "came-back", "done"], to: "in-hand" },
   "mark-done": { from: ["new", "in-hand", "came-back"], to: "done" },
   cannot: { from: ["new", "in-hand", "came-back"], to: "in-hand" },
   reopen: { from: ["done"], to: "in-hand" },
@@ -22,6 +24,7 @@ const steps: Record<
 
 const recordedAs = {
   "take-in-hand": "state",
+  "hand-over": "handed-over",
   "mark-done": "marked-done",
   cannot: "cannot",
   reopen: "state",
@@ -45,6 +48,8 @@ export async function handleFinding(
   if (!step.from.includes(finding.state))
     throw new AppError(finding.state === "closed" ? "finding-closed" : "nothing-to-do", 409);
   const to = step.to ?? finding.state;
+  const owner = await newOwner(actor, finding, input);
+  const dueOn = "dueOn" in input ? input.dueOn : null;
   const text = "text" in input && input.text !== "" ? input.text : null;
   const site = await row<{ timeZone: string }>(
     `SELECT time_zone AS "timeZone" FROM sites WHERE id = :id`,
@@ -53,13 +58,14 @@ export async function handleFinding(
   const closes = to === "closed" && finding.state !== "closed";
   await execute(
     `UPDATE findings SET state = $2, revision = revision + 1, owner_id = CASE WHEN $3 THEN $4 ELSE owner_id END, due_on = coalesce($5, due_on),
+       escalated_on = CASE WHEN $5::date > due_on THEN NULL ELSE escalated_on END, escalation_id = CASE WHEN $5::date > due_on THEN NULL ELSE escalation_id END,
        closed_on = CASE WHEN $6 THEN $7::date ELSE closed_on END, closing_reason = CASE WHEN $6 THEN $8 ELSE closing_reason END WHERE id = $1`,
     [
       finding.id,
       to,
-      input.kind === "take-in-hand",
-      actor.userId,
-      input.kind === "take-in-hand" ? input.dueOn : null,
+      owner !== null,
+      owner?.id ?? null,
+      dueOn,
       closes,
       todayAt(site?.timeZone ?? "UTC"),
       text,
@@ -73,7 +79,7 @@ export async function handleFinding(
       recordedAs[input.kind],
       finding.state,
       to,
-      text,
+      input.kind === "hand-over" ? (owner?.name ?? null) : text,
       actor.userId,
     ],
   );
@@ -81,6 +87,26 @@ export async function handleFinding(
     action: `${input.kind}-finding`,
     subjectKind: "finding",
     subjectId: finding.id,
-    values: { from: finding.state, to, text },
+    values: {
+      from: finding.state,
+      to,
+      text,
+      ...(input.kind === "hand-over" && { ownerId: input.ownerId, dueOn }),
+    },
   });
+}
+
+/** Whom a step puts the finding in the hands of; null where it stays in the hands it is in. */
+async function newOwner(
+  actor: Actor,
+  finding: Finding,
+  input: FindingStepInput,
+): Promise<{ id: string; name: string } | null> {
+  if (input.kind === "take-in-hand") return { id: actor.userId, name: actor.name };
+  if (input.kind !== "hand-over") return null;
+  const issues = dateIssues(["dueOn"], input.dueOn);
+  const owner = (await listOwners(finding.siteId)).find(({ id }) => id === input.ownerId);
+  if (!owner) issues.push(issue(["ownerId"], "not-of-this-site"));
+  if (!owner || issues.length > 0) throw unprocessable(issues);
+  return owner;
 }

@@ -1,5 +1,9 @@
 import type { Ear, EarBands, FitFacts, FitTestChange } from "../../shared/schemas/fit";
-import type { CheckAnalysis, CheckKeep } from "../../shared/schemas/microphone-check";
+import {
+  type CheckAnalysis,
+  type CheckKeep,
+  isKeepable,
+} from "../../shared/schemas/microphone-check";
 import { recordAudit } from "../lib/audit";
 import { execute, row } from "../lib/db";
 import { AppError, issue, notFound, unprocessable } from "../lib/errors";
@@ -12,10 +16,11 @@ import { correctFitTest, recordFitTest } from "./record-fit-test";
 const METHOD = "two-microphones";
 
 /**
- * A check that gave a personal attenuation becomes a fit test of its own, or the other ear of one of the same day. Check
- * and worker are locked. Returns the fit test's id.
+ * A check that gave a personal attenuation becomes a fit test of its own, or the other ear of one of the same day. One
+ * that only says whether the active part does its work does so too, without a trial: nothing is rated by it. Check and
+ * worker are locked. Returns the fit test's id.
  *
- * @throws AppError wrong-state where it is not analysed or gave none; invalid, not-found.
+ * @throws AppError wrong-state where it is not analysed or gave neither; invalid, not-found.
  */
 export async function keepMicrophoneCheck(
   actor: Actor,
@@ -24,7 +29,7 @@ export async function keepMicrophoneCheck(
   keep: CheckKeep,
 ): Promise<string> {
   const { analysis, state } = check;
-  if (state !== "analysed" || !analysis || analysis.parDb === null)
+  if (state !== "analysed" || !analysis || !isKeepable(analysis))
     throw new AppError("wrong-state", 409);
   const fitTestId =
     keep.joinFitTestId === null
@@ -59,7 +64,17 @@ async function keepAlone(
   const { id } = await recordFitTest(
     actor,
     worker,
-    { modelId, testedOn, method: METHOD, size, facts, ...site, needDb, note: "" },
+    {
+      modelId,
+      testedOn,
+      method: METHOD,
+      size,
+      facts,
+      ...site,
+      // Without a rating there is nothing to hold against it.
+      needDb: analysis.parDb === null ? null : needDb,
+      note: "",
+    },
     analysis.active?.hasPassed ?? null,
   );
   return id;
@@ -92,7 +107,8 @@ async function join(
     test.testedOn === testedOn &&
     !test.isVoid &&
     statement.method === METHOD &&
-    trialsOf(statement.facts, ear).length === 0;
+    isEarOpen(statement.facts, ear) &&
+    isRated(statement.facts) === (analysis.parDb !== null);
   if (!isOther) throw unprocessable([issue(["joinFitTestId"], "not-the-other-ear")]);
   await correctFitTest(
     actor,
@@ -103,7 +119,11 @@ async function join(
   return test.id;
 }
 
-const trialsOf = ({ leftDb, rightDb }: FitFacts, ear: Ear) => (ear === "left" ? leftDb : rightDb);
+/** Nothing is on record of this ear, neither rated nor checked. */
+const isEarOpen = ({ leftDb, rightDb, bands }: FitFacts, ear: Ear) =>
+  (ear === "left" ? leftDb : rightDb).length === 0 && (bands?.[ear] ?? null) === null;
+
+const isRated = ({ leftDb, rightDb }: FitFacts) => leftDb.length + rightDb.length > 0;
 
 /** One ear that failed fails the check; it is passed where both were checked and passed. */
 function bothEars(one: boolean | null, other: boolean | null): boolean | null {

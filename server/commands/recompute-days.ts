@@ -1,13 +1,8 @@
 import { createHash } from "node:crypto";
 import { evaluateDay } from "../../shared/acoustics/day";
 import { METHOD_VERSION } from "../../shared/acoustics/methods";
-import type {
-  CriterionResult,
-  DayEvaluation,
-  DayInput,
-  RuleSetVersion,
-} from "../../shared/acoustics/types";
-import { summarizeDay } from "../../shared/day/summarize-day";
+import type { DayEvaluation, DayInput, RuleSetVersion } from "../../shared/acoustics/types";
+import { resultFacts } from "../../shared/day/result-facts";
 import { findCauses } from "../../shared/findings/causes";
 import { canonicalJson } from "../lib/audit";
 import { execute, rows } from "../lib/db";
@@ -132,27 +127,6 @@ function computeDay(day: ResolvedDay, input: DayInput): ComputedDay {
 /** Names what a result rests on: input revisions, rule-set versions, method version. */
 export function hashOf(refs: DayRefs, methodVersion: number = METHOD_VERSION): string {
   return createHash("sha256").update(canonicalJson({ refs, methodVersion })).digest("hex");
-}
-
-/** What a stored result says of an evaluated day, but for whose it is and what it rests on. */
-export function resultFacts(input: DayInput, evaluation: DayEvaluation, governing: RuleSetVersion) {
-  const { governingCriteria: _, ...summary } = summarizeDay(input, evaluation, governing);
-  const isOwn = ({ ruleSetKey }: CriterionResult) => ruleSetKey === governing.key;
-  return {
-    ...summary,
-    atEarOffDb: evaluation.atEarDb,
-    atEarCountedDb: evaluation.counted?.atEarDb ?? null,
-    methodVersion: evaluation.methodVersion,
-    shiftMin: evaluation.shiftMin,
-    unaccountedMin: evaluation.unaccountedMin,
-    grade: evaluation.grade,
-    isProjected: evaluation.isProjected,
-    isKept: evaluation.keptReasons.length > 0,
-    criteria: {
-      governing: evaluation.criteria.filter(isOwn),
-      comparison: evaluation.criteria.filter((result) => !isOwn(result)),
-    },
-  };
 }
 
 /** Columns of a stored result and the members of `resultFacts` that fill them, with their types. */

@@ -129,7 +129,7 @@ async function addRevision(
   reason: string | null,
 ): Promise<void> {
   const { method, size, facts, confidencePct, needDb, note } = statement;
-  const { leftDb, rightDb, parDb, hasPassed } = ratingOf(statement);
+  const { leftDb, rightDb, parDb, hasPassed } = ratingOf(statement, activePassed);
   const revisionId = randomUUID();
   await execute(
     `INSERT INTO fit_test_revisions (id, organization_id, fit_test_id, number, method, size, facts, confidence_pct, left_db, right_db, par_db,
@@ -206,12 +206,13 @@ async function sizeIssues(
 }
 
 /**
- * What the trials come to, the weaker ear governing.
+ * What the trials come to, the weaker ear governing; nothing where only the active part was checked.
  *
  * @throws AppError invalid, where an ear is said to have more than the skull lets be reached.
  */
-function ratingOf({ facts, confidencePct, needDb }: Statement) {
+function ratingOf({ facts, confidencePct, needDb }: Statement, activePassed: ActivePassed) {
   const { leftDb, rightDb, methodSdDb } = facts;
+  if (leftDb.length + rightDb.length === 0 && activePassed !== null) return NOT_RATED;
   const { rating, refusal } = fitRating({ leftDb, rightDb, methodSdDb, confidencePct, needDb });
   if (refusal) {
     const { code, foundDb, limitDb } = refusal;
@@ -229,3 +230,5 @@ function ratingOf({ facts, confidencePct, needDb }: Statement) {
     hasPassed: rating.hasPassed,
   };
 }
+
+const NOT_RATED = { leftDb: null, rightDb: null, parDb: null, hasPassed: null } as const;

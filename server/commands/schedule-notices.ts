@@ -207,7 +207,7 @@ async function withdrawUnsent(days: string): Promise<void> {
     [days],
   );
   await execute(
-    `UPDATE notices n SET state = 'withdrawn', revision = revision + 1 WHERE n.state IN ('waiting', 'held')
+    `UPDATE notices n SET state = 'withdrawn', revision = revision + 1 WHERE n.state IN ('waiting', 'held') AND n.kind = 'findings'
        AND NOT EXISTS (SELECT 1 FROM notice_items i WHERE i.notice_id = n.id)`,
   );
 }

@@ -8,6 +8,7 @@ import { formatDay } from "../../shared/format/date";
 import { formatLevelWithUnit, formatWholeLevel } from "../../shared/format/level";
 import type { Locale } from "../../shared/i18n";
 import type { FindingKind } from "../../shared/schemas/finding";
+import { type Mail, mailHtml } from "./frame";
 
 /** One of the findings that a notice tells of, with the figures of the item's own day. */
 export interface NoticedFinding {
@@ -38,13 +39,7 @@ export interface NoticeFacts {
   link: string;
 }
 
-export interface Mail {
-  subject: string;
-  text: string;
-  html: string;
-}
-
-const escapeHtml = (text: string) => text.replace(/[&<>"']/g, (mark) => `&#${mark.charCodeAt(0)};`);
+export type { Mail } from "./frame";
 
 /** Subject, text and HTML from one set of facts. The subject holds no level and no medical word: it shows on lock screens. */
 export function overLimitMail(i18n: I18n, locale: Locale, facts: NoticeFacts): Mail {
@@ -64,13 +59,13 @@ export function overLimitMail(i18n: I18n, locale: Locale, facts: NoticeFacts): M
   return {
     subject,
     text: [...paragraphs, open, `${from}\n${foot}`].join("\n\n"),
-    html: `<!doctype html><html lang="${locale}"><head><meta charset="utf-8"><title>${escapeHtml(subject)}</title></head>
-<body style="margin:0;background:#F5F0E4;color:#211D17;font:17px/1.45 'Atkinson Hyperlegible Next',Verdana,sans-serif">
-<div style="max-width:560px;margin:0 auto;padding:20px;border-top:3px solid #211D17">
-${paragraphs.map((paragraph) => `<p>${escapeHtml(paragraph).replaceAll("\n", "<br>")}</p>`).join("\n")}
-<p><a href="${escapeHtml(facts.link)}" style="color:#135A50">${escapeHtml(i18n.t("Open in Dinward"))}</a></p>
-<p style="border-top:1px solid #211D17;padding-top:8px;font-size:14px;color:#5B5346">${escapeHtml(from)}<br>${escapeHtml(foot)}</p>
-</div></body></html>`,
+    html: mailHtml(
+      locale,
+      subject,
+      paragraphs,
+      { address: facts.link, words: i18n.t("Open in Dinward") },
+      [from, foot],
+    ),
   };
 }
 

@@ -1,9 +1,12 @@
-import { closeFitDues, openFitDues } from "../commands/follow-fits";
+import { escalateOverdue } from "../commands/escalate-overdue";
+import { closeFitDues, closeLaidDownFits, openFitDues } from "../commands/follow-fits";
 import { queueRecompute } from "../commands/mark-days-stale";
 import { queueHistoryReading } from "../commands/order-history-reading";
 import { queueNotice } from "../commands/schedule-notices";
 import { queueCheck } from "../commands/start-microphone-check";
 import { queueAnalysis } from "../commands/start-recording";
+import { writeResultLetters } from "../commands/write-result-letters";
+import { todayAt } from "../lib/calendar";
 import { execute, inTransaction, organizationIds, rows, sequelize } from "../lib/db";
 import { fileStore } from "../lib/file-store";
 import { deleteAudioDue } from "./delete-audio";
@@ -40,8 +43,11 @@ export async function lookAfter(): Promise<void> {
       for (const { id } of unchecked) await queueCheck(organizationId, id);
       await deleteAudioDue(organizationId);
       await openCalibrationFindings(organizationId);
+      await closeLaidDownFits(organizationId);
       await closeFitDues(organizationId);
       await openFitDues(organizationId);
+      await writeResultLetters(organizationId, todayAt("UTC"));
+      await escalateOverdue(organizationId);
       await execute("DELETE FROM idempotency_keys WHERE created_at < now() - interval '30 days'");
     });
   }

@@ -1,5 +1,8 @@
 import { createI18n, isLocale } from "../../shared/i18n";
-import { type Mail, type NoticeFacts, type NoticeItem, overLimitMail } from "../emails/over-limit";
+import { HIDDEN_SECRET, LETTER_PATH, linkLetter } from "../commands/link-letter";
+import type { Mail } from "../emails/frame";
+import { type NoticeFacts, type NoticeItem, overLimitMail } from "../emails/over-limit";
+import { resultsMail } from "../emails/results-letter";
 import { recordAudit } from "../lib/audit";
 import { execute, inTransaction, row, rows } from "../lib/db";
 import type { JobPayloads } from "../lib/jobs";
@@ -15,6 +18,7 @@ interface Claimed {
 interface NoticeRow {
   state: string;
   isDue: boolean;
+  kind: "findings" | "results";
   unknownOutcomes: number;
   messageId: string;
   email: string | null;
@@ -73,7 +77,7 @@ export async function sendNotice(
 /** Takes the notice for this attempt, or says that there is nothing to send. */
 async function claim(noticeId: string, publicUrl: string): Promise<Claimed | null> {
   const notice = await row<NoticeRow>(
-    `SELECT n.state, n.not_before <= now() + interval '1 second' OR n.last_error IS NOT NULL AS "isDue", n.unknown_outcomes AS "unknownOutcomes", n.message_id AS "messageId",
+    `SELECT n.state, n.kind, n.not_before <= now() + interval '1 second' OR n.last_error IS NOT NULL AS "isDue", n.unknown_outcomes AS "unknownOutcomes", n.message_id AS "messageId",
        CASE WHEN u.revoked_at IS NULL THEN u.email END AS email, n.subject, n.body_text AS "bodyText", n.body_html AS "bodyHtml"
      FROM notices n JOIN users u ON u.id = n.recipient_id WHERE n.id = :noticeId FOR UPDATE OF n`,
     { noticeId },
@@ -105,10 +109,16 @@ async function claim(noticeId: string, publicUrl: string): Promise<Claimed | nul
     `UPDATE notices SET state = 'sending', tries = tries + 1, attempted_at = now(), unknown_outcomes = $2, subject = $3, body_text = $4, body_html = $5, revision = revision + 1 WHERE id = $1`,
     [noticeId, unknown, mail.subject, mail.text, mail.html],
   );
-  return { mail, to: notice.email, messageId: notice.messageId, isRetryOfUnknown: unknown > 0 };
+  return {
+    mail: notice.kind === "results" ? await linkLetter(noticeId, mail) : mail,
+    to: notice.email,
+    messageId: notice.messageId,
+    isRetryOfUnknown: unknown > 0,
+  };
 }
 
 interface HeadRow {
+  kind: "findings" | "results";
   audience: NoticeFacts["audience"];
   recipientName: string;
   language: string;
@@ -120,12 +130,13 @@ interface HeadRow {
 /** The notice as it reads now, in its reader's language. */
 export async function noticeMail(noticeId: string, publicUrl: string): Promise<Mail> {
   const head = await row<HeadRow>(
-    `SELECT n.audience, u.name AS "recipientName", u.language, o.name AS "organizationName", s.name AS "siteName",
+    `SELECT n.kind, n.audience, u.name AS "recipientName", u.language, o.name AS "organizationName", s.name AS "siteName",
        (coalesce(earlier.sent_at, earlier.attempted_at, earlier.not_before) AT TIME ZONE s.time_zone)::date::text AS "replacesMailOf"
      FROM notices n LEFT JOIN notices earlier ON earlier.id = n.replaces_id JOIN users u ON u.id = n.recipient_id JOIN organizations o ON o.id = n.organization_id JOIN sites s ON s.id = n.site_id WHERE n.id = :noticeId`,
     { noticeId },
   );
   if (!head) throw new Error("the notice is gone");
+  if (head.kind === "results") return letterMail(noticeId, publicUrl, head);
   // A finding's facts are those of its latest day: what the item's own day came to takes their place.
   const items = await rows<NoticeItem>(
     `SELECT w.name AS "workerName", w.employee_number AS "employeeNumber", i.date::text AS date, coalesce(r.at_ear_counted_db, r.at_ear_db) AS "atEarDb", r.outside_db AS "outsideDb",
@@ -145,5 +156,23 @@ export async function noticeMail(noticeId: string, publicUrl: string): Promise<M
     ...head,
     items,
     link: `${publicUrl}/${head.audience === "worker" ? "" : head.audience === "supervisor" ? "crew-sheet" : "findings"}`,
+  });
+}
+
+/** A letter goes as it was written; the link stands in what is kept of the mail without its secret. */
+async function letterMail(
+  noticeId: string,
+  publicUrl: string,
+  { organizationName, siteName }: HeadRow,
+): Promise<Mail> {
+  const letter = await row<{ language: string; subject: string; text: string }>(
+    "SELECT language, subject, body_text AS text FROM result_letters WHERE notice_id = :noticeId",
+    { noticeId },
+  );
+  if (!letter) throw new Error("the letter is gone");
+  const locale = isLocale(letter.language) ? letter.language : "en";
+  return resultsMail(await createI18n(locale), locale, letter, {
+    link: `${publicUrl}${LETTER_PATH}${HIDDEN_SECRET}`,
+    from: `${organizationName}, ${siteName}`,
   });
 }

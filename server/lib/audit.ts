@@ -80,7 +80,8 @@ export async function recordAuditMany(
   );
 }
 
-interface Unsealed {
+/** An event of the trail, as far as its seal covers it. */
+export interface EventFacts {
   id: string;
   at: string;
   actorId: string | null;
@@ -90,28 +91,64 @@ interface Unsealed {
   digest: string;
 }
 
-/** What a seal covers of an event, in an order that never changes. */
-export function sealedText(event: Unsealed): string {
+/** An entry on rows (migrations/20261202090000-row-trail.ts), as far as its seal covers it. */
+export interface EntryFacts {
+  entryId: string;
+  at: string;
+  roleName: string;
+  tableName: string;
+  operation: string;
+  /** SHA-256 over the shape's columns, the keys and the digests, in hex. */
+  content: string;
+}
+
+/** What a seal covers, in an order that never changes. An event's first line is a number, an entry's the word "rows". */
+export function sealedText(record: EventFacts | EntryFacts): string {
+  if ("entryId" in record)
+    return [
+      "rows",
+      record.entryId,
+      record.at,
+      record.roleName,
+      record.tableName,
+      record.operation,
+      record.content,
+    ].join("\n");
   return [
-    event.id,
-    event.at,
-    event.actorId ?? "",
-    event.action,
-    event.subjectKind,
-    event.subjectId ?? "",
-    event.digest,
+    record.id,
+    record.at,
+    record.actorId ?? "",
+    record.action,
+    record.subjectKind,
+    record.subjectId ?? "",
+    record.digest,
   ].join("\n");
 }
 
-export function chainHash(previous: Buffer, event: Unsealed): Buffer {
-  return createHash("sha256").update(previous).update(sealedText(event)).digest();
+export function chainHash(previous: Buffer, record: EventFacts | EntryFacts): Buffer {
+  return createHash("sha256").update(previous).update(sealedText(record)).digest();
 }
 
+const utc = (column: string) =>
+  `to_char(${column} AT TIME ZONE 'UTC', 'YYYY-MM-DD"T"HH24:MI:SS.US')`;
+
+/** SQL: an event as JSON, of the alias `e`. */
+export const EVENT_FACTS = `json_build_object('id', e.id::text, 'at', ${utc("e.at")}, 'actorId', e.actor_id, 'action', e.action,
+  'subjectKind', e.subject_kind, 'subjectId', e.subject_id, 'digest', encode(e.values_digest, 'hex'))`;
+
+/** SQL: an entry on rows as JSON, of the aliases `n` (trail_entries) and `p` (trail_shapes). */
+export const ENTRY_FACTS = `json_build_object('entryId', n.id::text, 'at', ${utc("n.at")}, 'roleName', n.role_name, 'tableName', n.table_name,
+  'operation', n.operation, 'content', encode(sha256(convert_to(array_to_string(p.columns || p.types, chr(10)) || chr(10) || array_to_string(n.keys, chr(10)) || chr(10)
+    || coalesce((SELECT string_agg(encode(g, 'hex'), chr(10) ORDER BY place) FROM unnest(n.digests) WITH ORDINALITY u(g, place)), ''), 'UTF8')), 'hex'))`;
+
 /**
- * Chains committed events that have no seal yet, in the order of their numbers. Runs inside a transaction of the
- * organization; a second sealer waits. An event of a transaction still open, or numbered below one, is left for later.
+ * Chains what is committed and has no seal yet: events, then entries on rows, each in the order of their numbers. Runs
+ * inside a transaction of the organization; a second sealer waits. What a transaction still open wrote, or one numbered
+ * above it, is left for later.
+ *
+ * @returns how many seals were set; fewer than `limit`: nothing is left for now.
  */
-export async function sealEvents(organizationId: string, limit = 5000): Promise<number> {
+export async function sealTrail(organizationId: string, limit = 5000): Promise<number> {
   const transaction = currentTransaction();
   await sequelize().query("SELECT pg_advisory_xact_lock(hashtextextended('seal:' || $1, 0))", {
     bind: [organizationId],
@@ -121,27 +158,52 @@ export async function sealEvents(organizationId: string, limit = 5000): Promise<
     "SELECT number, hash FROM audit_seals WHERE organization_id = :organizationId ORDER BY number DESC LIMIT 1",
     { organizationId },
   );
-  const [found] = await sequelize().query(
-    `SELECT e.id::text AS id, to_char(e.at AT TIME ZONE 'UTC', 'YYYY-MM-DD"T"HH24:MI:SS.US') AS at, e.actor_id AS "actorId", e.action,
-            e.subject_kind AS "subjectKind", e.subject_id AS "subjectId", encode(e.values_digest, 'hex') AS digest
-       FROM audit_events e LEFT JOIN audit_seals s ON s.event_id = e.id
-      WHERE e.organization_id = $1 AND s.event_id IS NULL AND e.transaction_id < pg_snapshot_xmin(pg_current_snapshot())
-      ORDER BY e.id LIMIT $2`,
-    { bind: [organizationId, limit], transaction },
+  // In a restored database transactions count anew: numbers from before lie in its future, and a floor there is none.
+  const span = await row<{ floor: string; open: string; next: string }>(
+    `SELECT pg_snapshot_xmin(s)::text AS open, pg_snapshot_xmax(s)::text AS next,
+       coalesce((SELECT f.transaction_id FROM trail_floors f WHERE f.organization_id = :organizationId AND f.transaction_id <= pg_snapshot_xmax(s)), '0'::xid8)::text AS floor
+     FROM pg_current_snapshot() s`,
+    { organizationId },
   );
-  const events = found as Unsealed[];
-  if (events.length === 0) return 0;
+  const { floor, open, next } = span!;
+  const isDue = (alias: string) =>
+    `((${alias}.transaction_id >= $3::xid8 AND ${alias}.transaction_id < $4::xid8) OR ${alias}.transaction_id > $5::xid8)`;
+  const [found] = await sequelize().query(
+    `(SELECT 1 AS kind, e.id AS place, ${EVENT_FACTS} AS record
+       FROM audit_events e LEFT JOIN audit_seals s ON s.event_id = e.id
+      WHERE e.organization_id = $1 AND s.event_id IS NULL AND ${isDue("e")} ORDER BY e.id LIMIT $2)
+     UNION ALL
+     (SELECT 2, n.id, ${ENTRY_FACTS}
+       FROM trail_entries n JOIN trail_shapes p ON p.id = n.shape_id LEFT JOIN audit_seals s ON s.entry_id = n.id
+      WHERE n.organization_id = $1 AND s.entry_id IS NULL AND ${isDue("n")} ORDER BY n.id LIMIT $2)
+     ORDER BY kind, place LIMIT $2`,
+    { bind: [organizationId, limit, floor, open, next], transaction },
+  );
+  const records = (found as { record: EventFacts | EntryFacts }[]).map(({ record }) => record);
   let hash = last?.hash ?? Buffer.alloc(32);
   let number = Number(last?.number ?? 0);
-  const seals = events.map((event) => {
-    hash = chainHash(hash, event);
+  const seals = records.map((record) => {
+    hash = chainHash(hash, record);
     number += 1;
-    return { number, eventId: event.id, hash: hash.toString("hex") };
+    return {
+      number,
+      eventId: "entryId" in record ? null : record.id,
+      entryId: "entryId" in record ? record.entryId : null,
+      hash: hash.toString("hex"),
+    };
   });
-  await sequelize().query(
-    `INSERT INTO audit_seals (organization_id, number, event_id, hash)
-     SELECT $1, (s->>'number')::bigint, (s->>'eventId')::bigint, decode(s->>'hash', 'hex') FROM jsonb_array_elements($2::jsonb) s`,
-    { bind: [organizationId, JSON.stringify(seals)], transaction },
-  );
+  if (seals.length > 0)
+    await sequelize().query(
+      `INSERT INTO audit_seals (organization_id, number, event_id, entry_id, hash)
+       SELECT $1, x.number, x."eventId", x."entryId", decode(x.hash, 'hex')
+       FROM jsonb_to_recordset($2::jsonb) AS x(number bigint, "eventId" bigint, "entryId" bigint, hash text)`,
+      { bind: [organizationId, JSON.stringify(seals)], transaction },
+    );
+  if (seals.length > 0 && seals.length < limit)
+    await sequelize().query(
+      `INSERT INTO trail_floors (organization_id, transaction_id) VALUES ($1, $2::xid8)
+       ON CONFLICT (organization_id) DO UPDATE SET transaction_id = excluded.transaction_id`,
+      { bind: [organizationId, open], transaction },
+    );
   return seals.length;
 }

@@ -4,6 +4,7 @@ import { currentTransaction, sequelize } from "./db";
 export interface JobPayloads {
   "recompute-days": { organizationId: string };
   "send-notice": { organizationId: string; noticeId: string };
+  "send-escalation": { organizationId: string; escalationId: string };
   "look-after": Record<string, never>;
   /** Reads a time history's file: a report, and once it is ordered the levels. */
   "read-history": { organizationId: string; importId: string };

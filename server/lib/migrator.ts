@@ -26,6 +26,8 @@ const appendOnly = [
   "finding_steps",
   "audit_events",
   "audit_seals",
+  "trail_entries",
+  "trail_shapes",
 ];
 
 /** Two processes that start at once migrate one after the other. */
@@ -82,6 +84,7 @@ export async function migrateUp(
       "CREATE TABLE IF NOT EXISTS schema_migrations (name text PRIMARY KEY, run_at timestamptz NOT NULL DEFAULT now())",
     );
     const done = await umzug(db).up();
+    await db.query("CALL watch_rows()");
     await runMigrations({ connectionString: ownerUrl });
     await grantApplication(db, applicationRole);
     return done.map(({ name }) => name);
@@ -105,7 +108,7 @@ async function grantApplication(db: Sequelize, role: string): Promise<void> {
     GRANT USAGE ON SCHEMA public, graphile_worker TO ${role};
     GRANT SELECT, INSERT, UPDATE, DELETE ON ALL TABLES IN SCHEMA public TO ${role};
     REVOKE UPDATE, DELETE ON ${appendOnly.join(", ")} FROM ${role};
-    REVOKE INSERT, UPDATE, DELETE ON schema_migrations FROM ${role};
+    REVOKE INSERT, UPDATE, DELETE ON schema_migrations, trail_shapes, watched_tables FROM ${role};
     GRANT USAGE ON ALL SEQUENCES IN SCHEMA public, graphile_worker TO ${role};
     GRANT SELECT, INSERT, UPDATE, DELETE ON ALL TABLES IN SCHEMA graphile_worker TO ${role};
     GRANT EXECUTE ON ALL FUNCTIONS IN SCHEMA graphile_worker TO ${role};

@@ -31,6 +31,8 @@ export class Finding extends Model<InferAttributes<Finding>, InferCreationAttrib
   declare closedOn: CreationOptional<string | null>;
   declare closingReason: CreationOptional<string | null>;
   declare previousId: CreationOptional<string | null>;
+  declare escalatedOn: CreationOptional<string | null>;
+  declare escalationId: CreationOptional<string | null>;
   declare revision: CreationOptional<number>;
   declare openedAt: CreationOptional<Date>;
 }
@@ -80,6 +82,8 @@ export function defineFindingModels(sequelize: Sequelize): void {
       closedOn: column.dayOrNull(),
       closingReason: column.textOrNull(),
       previousId: column.uuidOrNull(),
+      escalatedOn: column.dayOrNull(),
+      escalationId: column.uuidOrNull(),
       revision: column.revision(),
       openedAt: column.instant(),
     },

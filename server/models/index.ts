@@ -3,12 +3,14 @@ import { defineFindingModels } from "./finding";
 import { defineFitModels } from "./fit";
 import { defineInstrumentModels } from "./instrument";
 import { defineIssueModels } from "./issue";
+import { definePlanModel } from "./plan";
 import { defineProtectorModels } from "./protector";
 import { defineShiftModels } from "./shift";
 import { defineShopFloorModels } from "./shop-floor";
 import { defineSiteModels } from "./site";
 import { defineSurveyModels } from "./survey";
 import { defineTaskModels } from "./task";
+import { defineTrainingModels } from "./training";
 import { defineUserModels } from "./user";
 import { defineWorkerModels } from "./worker";
 
@@ -17,6 +19,7 @@ export function defineModels(sequelize: Sequelize): void {
   defineUserModels(sequelize);
   defineWorkerModels(sequelize);
   defineTaskModels(sequelize);
+  definePlanModel(sequelize);
   defineProtectorModels(sequelize);
   defineIssueModels(sequelize);
   defineInstrumentModels(sequelize);
@@ -25,4 +28,5 @@ export function defineModels(sequelize: Sequelize): void {
   defineFindingModels(sequelize);
   defineFitModels(sequelize);
   defineSurveyModels(sequelize);
+  defineTrainingModels(sequelize);
 }

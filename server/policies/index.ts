@@ -149,6 +149,12 @@ export const refusalPolicy = policy<AtSite>()({
   can: { change: officerAt },
 });
 
+/** Trainings as the office has them; a worker reads the own ones with the worker's record. */
+export const trainingPolicy = policy<AtSite>()({
+  sees: (actor, t) => [actor.at(`${t}.site_id`, "officer", "auditor")],
+  can: { change: officerAt },
+});
+
 export const stockPolicy = policy<AtSite>()({
   sees: (actor, s) => [actor.at(`${s}.site_id`, "officer", "auditor")],
   can: { change: officerAt },
@@ -200,6 +206,12 @@ export const lookPolicy = (date: string) =>
     can: {},
   });
 
+/** What was tried and kept: the officer's work, the auditor's to read. */
+export const planPolicy = policy<AtSite>()({
+  sees: (actor, p) => [actor.at(`${p}.site_id`, "officer", "auditor")],
+  can: { keep: officerAt, putAside: officerAt },
+});
+
 export const signalPolicy = policy<AtSite>()({
   sees: (actor, s) => [actor.at(`${s}.site_id`, "officer", "auditor", "supervisor")],
   can: { change: officerAt },
@@ -220,12 +232,28 @@ export const findingPolicy = policy<AtSite>()({
   },
 });
 
+/** Papers of a finding may show others: not for the worker whom it concerns. */
+export const findingFilePolicy = policy<AtSite>()({
+  sees: (actor, f) => [
+    actor.at(`${f}.site_id`, "officer", "auditor"),
+    actor.supervises(`${f}.worker_id`, today),
+    actor.supervises(`${f}.worker_id`, `${f}.last_date`),
+  ],
+  can: {},
+});
+
 export const noticePolicy = policy<AtSite>()({
   sees: (actor, n) => [
     actor.at(`${n}.site_id`, "officer", "auditor"),
     `${n}.recipient_id = '${actor.userId}'`,
   ],
   can: { handle: officerAt },
+});
+
+/** Letters with results: told to the worker, and signed before the officer. */
+export const letterPolicy = policy<AtSite>()({
+  sees: (actor, l) => [actor.at(`${l}.site_id`, "officer", "auditor")],
+  can: { acknowledge: officerAt },
 });
 
 /** People and roles. An administrator grants them and reads no exposure by it. */
@@ -248,6 +276,7 @@ const tableOfSubject = {
   run: "runs",
   finding: "findings",
   notice: "notices",
+  letter: "result_letters",
   survey: "surveys",
   "workplace-change": "workplace_changes",
   "history-import": "history_imports",
@@ -258,6 +287,8 @@ const tableOfSubject = {
   "protector-issue": "protector_issues",
   "wearing-round": "wearing_rounds",
   "warning-signal": "warning_signals",
+  training: "training_sessions",
+  plan: "plans",
 };
 
 /** The site an event is about, by its subject. */
@@ -301,6 +332,9 @@ export const may = {
   /** Fits and issues as the office sees them. */
   readFitting: (actor: Actor) => actor.is("officer", "auditor"),
   acknowledge: (actor: Actor) => actor.is("officer", "worker"),
+  readLetters: (actor: Actor) => actor.is("officer", "auditor"),
   readTrail: (actor: Actor) => actor.is("auditor", "administrator"),
+  /** Held against all rows of the organization: tables and keys, nobody's values. */
+  checkTrail: (actor: Actor) => actor.is("auditor"),
   readSites: (actor: Actor) => actor.is("officer", "auditor", "administrator", "supervisor"),
 };

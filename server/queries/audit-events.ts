@@ -13,6 +13,7 @@ import {
   findingPolicy,
   fitPolicy,
   historyPolicy,
+  letterPolicy,
   noticePolicy,
   programmePolicy,
   protectorPolicy,
@@ -134,6 +135,12 @@ async function namesOf(actor: Actor, ids: readonly string[]): Promise<NamedThing
       from: "notices t JOIN users u ON u.id = t.recipient_id",
       name: "u.name",
       condition: visible(noticePolicy, actor, "t"),
+    },
+    {
+      kind: "letter",
+      from: "result_letters t JOIN workers w ON w.id = t.worker_id",
+      name: "w.name",
+      condition: visible(letterPolicy, actor, "t"),
     },
     {
       kind: "survey",

@@ -15,18 +15,21 @@ export const dueAfterTest = (
 
 /**
  * SQL: the models that workers wear alone today, each with the day by which its fit has to be tested (`due_on`) and the
- * last test (`tested_on`, null: never). `condition` narrows the assignments `a`. A device that was never tested is due
- * as soon as one that failed.
+ * last test (`tested_on`, null: never). `condition` narrows the assignments `a`; `sites` stands in for the table where
+ * another policy is tried. A device never tested on its wearer has the days that the policy states from the day on which
+ * it was given; where that was before the site asked for tests, those days are shared out over all who wear one, so that
+ * they do not all fall due at once. That share follows from the worker and the model, and stays. Common practice, no source.
  */
-export const fitDues = (condition: string): string =>
+export const fitDues = (condition: string, sites = "sites"): string =>
   `SELECT w.organization_id, w.site_id, u.worker_id, u.model_id, m.name AS protector, t.tested_on,
      CASE WHEN t.tested_on IS NOT NULL THEN ${dueAfterTest("t.tested_on", "t.passed[1]", "t.passed[2]", "i.issued_on")}
-       WHEN s.fit_every_months IS NOT NULL OR s.fit_after_fail_days IS NOT NULL
-       THEN greatest(u.since, i.issued_on) + coalesce(s.fit_after_fail_days, 0) END AS due_on
+       WHEN s.fit_asked_from > greatest(u.since, i.issued_on)
+       THEN s.fit_asked_from + 1 + (hashtext(u.worker_id::text || u.model_id) & 2147483647) % s.fit_first_days
+       ELSE greatest(u.since, i.issued_on) + s.fit_first_days END AS due_on
    FROM (SELECT a.worker_id, a.inner_model_id AS model_id, min(lower(a.valid)) AS since FROM assignments a
          WHERE a.valid @> current_date AND a.outer_model_id IS NULL AND ${condition} GROUP BY a.worker_id, a.inner_model_id) u
    JOIN workers w ON w.id = u.worker_id AND (w.left_on IS NULL OR w.left_on >= current_date)
-   JOIN sites s ON s.id = w.site_id AND (s.fit_every_months IS NOT NULL OR s.fit_after_fail_days IS NOT NULL)
+   JOIN ${sites} s ON s.id = w.site_id AND (s.fit_every_months IS NOT NULL OR s.fit_after_fail_days IS NOT NULL)
    JOIN protector_models m ON m.id = u.model_id
    CROSS JOIN LATERAL (
      SELECT max(x.tested_on) AS tested_on, array_agg(x.has_passed ORDER BY x.tested_on DESC, x.created_at DESC) AS passed

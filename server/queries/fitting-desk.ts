@@ -1,5 +1,7 @@
+import { lawAtEar } from "../../shared/acoustics/outside-criterion";
 import { ProtectorChoice, type WornGear } from "../../shared/acoustics/protection/choose-protector";
 import type { DayInput } from "../../shared/acoustics/types";
+import { besideScaleDb } from "../../shared/rule-sets";
 import type { Candidate, FitPolicyInput, FittingDesk } from "../../shared/schemas/fit";
 import { todayAt } from "../lib/calendar";
 import { rows } from "../lib/db";
@@ -8,12 +10,13 @@ import { type Actor, abilities, visible } from "../lib/policy";
 import type { Worker } from "../models/worker";
 import { fitPolicy, issuePolicy } from "../policies";
 import { listFitTests } from "./fit-tests";
-import { fitsOf, lawAtEar, noisesOf, offersAt, requiredGear } from "./register-offers";
+import { fitsOf, noisesOf, offersAt, pairsOf, requiredGear } from "./register-offers";
 import { FIT_POLICY } from "./sites";
 import { type WorkerNoise, workerNoise } from "./worker-noise";
 
 /** Tests that the desk shows; the worker's page has all of them. */
 const LATEST_TESTS = 50;
+const MOST_PAIRS = 10;
 
 /**
  * A worker at the fitting desk: what the noise asks for, the register in the order in which it suits, what was tried and
@@ -33,9 +36,9 @@ export async function fittingDesk(actor: Actor, worker: Worker): Promise<Fitting
     ruleSetVersion: noise.governing.version,
     need: noise.need,
     policy,
-    candidates: await candidates(actor, worker, noise, today, [
+    ...(await candidates(actor, worker, noise, today, [
       ...new Set([...facts.wornGear, ...(await gearOf(noise.day))]),
-    ]),
+    ])),
     tests: tests.rows,
     issued: await issuedTo(actor, worker.id),
     can: { test: can.test, issue: can.issue },
@@ -60,14 +63,17 @@ function deskHead(workerId: string) {
 const gearOf = (day: DayInput | null): Promise<WornGear[]> =>
   requiredGear(day?.shifts.flatMap(({ tasks }) => tasks.map(({ taskId }) => taskId)) ?? []);
 
-/** The register's single devices in the order of suitability for this worker's noise. */
+/**
+ * The register's single devices in the order of suitability for this worker's noise; and, where each of them leaves too
+ * little, two together as far as the rule can say something of them.
+ */
 async function candidates(
   actor: Actor,
   worker: Worker,
   { governing, day, need }: WorkerNoise,
   date: string,
   wornGear: readonly WornGear[],
-): Promise<Candidate[]> {
+): Promise<Pick<FittingDesk, "candidates" | "pairs">> {
   const offers = await offersAt(actor, worker.siteId, date);
   const noises =
     day && need.outsideDb !== null
@@ -77,14 +83,31 @@ async function candidates(
           day,
         )
       : [];
-  const fits = await fitsOf([worker.id], date);
-  return new ProtectorChoice(offers, governing.protection, lawAtEar(governing)).for({
-    noises,
-    personalTargetDb: worker.personalTargetDb,
-    wornGear,
-    wornMin: noises.reduce((sum, { durationMin }) => sum + durationMin, 0),
-    fits: fits.get(worker.id) ?? new Map(),
-  });
+  const fits = await fitsOf([worker.id], date, governing.protection);
+  const rank = (ofThese: typeof offers): Candidate[] =>
+    new ProtectorChoice(
+      ofThese,
+      governing.protection,
+      lawAtEar(governing),
+      besideScaleDb(governing),
+    ).for({
+      noises,
+      personalTargetDb: worker.personalTargetDb,
+      wornGear,
+      wornMin: noises.reduce((sum, { durationMin }) => sum + durationMin, 0),
+      fits: fits.get(worker.id) ?? new Map(),
+    });
+  const singles = rank(offers);
+  const possible = singles.filter(({ excludedBy }) => excludedBy === null);
+  const isTooLittle = possible.length > 0 && possible.every(({ word }) => word === "too-little");
+  return {
+    candidates: singles,
+    pairs: isTooLittle
+      ? rank(await pairsOf(offers, date))
+          .filter(({ excludedBy }) => excludedBy === null)
+          .slice(0, MOST_PAIRS)
+      : [],
+  };
 }
 
 function issuedTo(actor: Actor, workerId: string): Promise<FittingDesk["issued"]> {

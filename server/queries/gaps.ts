@@ -4,6 +4,7 @@ import type { GapKind, GapNames, GapsView } from "../../shared/schemas/waiting";
 import { rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
 import { dayPolicy, findingPolicy } from "../policies";
+import { TRAINING_DUTIES } from "./training";
 
 type Kind = z.infer<typeof GapKind>;
 type GapRow = z.infer<typeof GapNames>["rows"][number];
@@ -41,6 +42,8 @@ const notices = (condition: string) => `
  * - not-measured: workers over 80 dB without protection on a day known only from a task's level or an estimate, of whom
  *   no run of that year is recorded; with their job and the last such day.
  * - no-protector: workers with an open finding that a protector is required and none assigned, on a day of that year.
+ * - not-trained: workers over what their rules' duty to train hangs from, and no training within its interval before the
+ *   last such day; with that day.
  * - notice-late: worker and day of which somebody was told more than a day after the entry.
  * - notice-not-sent: worker and day of which a notice failed, is held, has an outcome nobody knows, or is overdue.
  * - not-assessed: days without a verdict on a line that their rule set judges, or without any result.
@@ -59,6 +62,14 @@ const gapQueries: Record<Kind, (actor: Actor) => string> = {
     JOIN day_results r ON r.id = e.result_id LEFT JOIN tasks k ON k.id = r.deciding_task_id
     WHERE f.kind = 'no-protector' AND f.state <> 'closed' AND ${visible(findingPolicy, actor, "f")}
     GROUP BY f.worker_id`,
+  "not-trained": () => `
+    SELECT d.worker_id AS id, NULL AS note, max(d.date) AS date FROM year_days d JOIN day_results r ON r.id = d.result_id
+    JOIN jsonb_to_recordset(CAST(:duties AS jsonb)) AS k("ruleSetKey" text, over jsonpath, "withinDays" int, "everyMonths" int)
+      ON k."ruleSetKey" = d.governing_rule_set AND jsonb_path_exists(r.criteria->'governing', k.over)
+    GROUP BY d.worker_id HAVING NOT EXISTS (
+      SELECT 1 FROM training_attendances a JOIN training_sessions t ON t.id = a.session_id
+      WHERE a.worker_id = d.worker_id AND t.struck_reason IS NULL AND t.held_on <= make_date(:year, 12, 31)
+        AND t.held_on > coalesce(max(d.date) - make_interval(months => min(k."everyMonths")), '-infinity'))`,
   "notice-late": () =>
     notices("n.state IN ('sent', 'possibly-sent') AND n.sent_at > n.created_at + interval '1 day'"),
   "notice-not-sent": () =>
@@ -82,7 +93,7 @@ export async function yearGaps(
   actor: Actor,
   { siteId, year }: YearOfSite,
 ): Promise<z.input<typeof GapsView>> {
-  const values = { siteId, year };
+  const values = { siteId, year, duties: TRAINING_DUTIES };
   const kinds = Object.keys(gapQueries) as Kind[];
   const counts = kinds.map(
     (kind) =>
@@ -127,6 +138,6 @@ export async function gapNames(
     `WITH ${yearDays(actor)}
      SELECT g.id, w.name, w.employee_number AS "employeeNumber", g.note, g.date::text AS date
      FROM (${gapQueries[kind](actor)}) g JOIN workers w ON w.id = g.id ORDER BY g.date DESC, w.employee_number LIMIT ${NAMES_LIMIT}`,
-    { siteId, year },
+    { siteId, year, duties: TRAINING_DUTIES },
   );
 }

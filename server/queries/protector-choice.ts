@@ -1,10 +1,11 @@
+import { lawAtEar } from "../../shared/acoustics/outside-criterion";
 import {
   ProtectorChoice,
   type RankedProtector,
   type WornGear,
 } from "../../shared/acoustics/protection/choose-protector";
-import type { TimedTask } from "../../shared/acoustics/types";
-import { ruleSetVersion } from "../../shared/rule-sets";
+import type { RuleSetVersion, TimedTask } from "../../shared/acoustics/types";
+import { besideScaleDb, ruleSetVersion } from "../../shared/rule-sets";
 import type { ProtectorChoiceView, Wearer } from "../../shared/schemas/choice";
 import { todayAt } from "../lib/calendar";
 import { row, rows } from "../lib/db";
@@ -12,15 +13,7 @@ import { only } from "../lib/only";
 import { type Actor, visible } from "../lib/policy";
 import { workerPolicy } from "../policies";
 import { gridTasks } from "./day-grid";
-import {
-  bareTask,
-  fitsOf,
-  lawAtEar,
-  noisesOf,
-  offersAt,
-  pairsOf,
-  requiredGear,
-} from "./register-offers";
+import { bareTask, fitsOf, noisesOf, offersAt, pairsOf, requiredGear } from "./register-offers";
 import { settingsInForce } from "./site-settings";
 
 /** Whose noise protectors are compared for. */
@@ -74,14 +67,19 @@ export async function protectorChoice(
   const singles = await offersAt(actor, siteId, date);
   const pairs = await pairsOf(singles, date);
   const rank = (offers: typeof singles): RankedProtector[] =>
-    new ProtectorChoice(offers, governing.protection, lawAtEar(governing)).for({
+    new ProtectorChoice(
+      offers,
+      governing.protection,
+      lawAtEar(governing),
+      besideScaleDb(governing),
+    ).for({
       noises,
       personalTargetDb: null,
       wornGear: gear,
       wornMin: noises.reduce((sum, { durationMin }) => sum + durationMin, 0),
       fits: new Map(),
     });
-  const wearers = await wearersOf(actor, subject, date);
+  const wearers = await wearersOf(actor, subject, date, governing.protection);
   return {
     subject: { ...subject, siteName: site.name },
     date,
@@ -130,6 +128,7 @@ async function wearersOf(
   actor: Actor,
   { kind, id, siteId }: ChoiceSubject,
   date: string,
+  rule: RuleSetVersion["protection"],
 ): Promise<Wearer[]> {
   const ofSubject =
     kind === "job"
@@ -154,6 +153,7 @@ async function wearersOf(
   const fits = await fitsOf(
     found.map(({ id: workerId }) => workerId),
     date,
+    rule,
   );
   return found.map((worker) => ({
     ...worker,

@@ -1,13 +1,14 @@
-import { type ExchangeLaw, lawOf } from "../../shared/acoustics/exchange-law";
-import { outsideCriterion } from "../../shared/acoustics/outside-criterion";
+import { normalShare } from "../../shared/acoustics/distributions";
 import { isInNoise } from "../../shared/acoustics/protection/at-ear";
 import {
   isWornInside,
   isWornOver,
+  LOWER_CONFIDENCE_PCT,
   type Offer,
   type OwnFit,
   type WornGear,
 } from "../../shared/acoustics/protection/choose-protector";
+import { fitRating } from "../../shared/acoustics/protection/fit-rating";
 import type {
   BandAttenuation,
   DayInput,
@@ -15,6 +16,7 @@ import type {
   TimedTask,
 } from "../../shared/acoustics/types";
 import type { KnownTask } from "../../shared/day/build-day-input";
+import type { FitFacts } from "../../shared/schemas/fit";
 import type { ProtectorUse } from "../../shared/schemas/protector";
 import { rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
@@ -82,24 +84,35 @@ const idsOf = (offers: readonly Offer[]) =>
 const both = (one: boolean | null, other: boolean | null): boolean | null =>
   one === false || other === false ? false : one === null || other === null ? null : true;
 
-/** The fit that counts, by worker and model. */
+/** The fit that counts, by worker and model, and what it comes to for the shares at which labels are compared. */
 export async function fitsOf(
   workerIds: readonly string[],
   date: string,
+  { alpha }: Pick<RuleSetVersion["protection"], "alpha">,
 ): Promise<Map<string, Map<string, OwnFit>>> {
-  const found = await rows<OwnFit & { workerId: string; modelId: string }>(
+  const found = await rows<FitRow>(
     `SELECT DISTINCT ON (f.worker_id, f.model_id) f.worker_id AS "workerId", f.model_id AS "modelId", v.par_db AS "parDb",
-       v.has_passed AS "hasPassed", f.tested_on::text AS "testedOn"
+       v.has_passed AS "hasPassed", f.tested_on::text AS "testedOn", v.facts
      FROM fit_tests f JOIN fit_test_revisions v ON v.id = f.current_revision_id
      WHERE f.worker_id = ANY (CAST(:ids AS uuid[])) AND NOT f.is_void AND v.par_db IS NOT NULL AND f.tested_on <= :date
      ORDER BY f.worker_id, f.model_id, f.tested_on DESC, f.created_at DESC`,
     { ids: `{${workerIds.join(",")}}`, date },
   );
   const fits = new Map<string, Map<string, OwnFit>>();
-  for (const { workerId, modelId, ...fit } of found)
-    fits.set(workerId, (fits.get(workerId) ?? new Map()).set(modelId, fit));
+  for (const { workerId, modelId, facts, ...fit } of found) {
+    const parAt = (confidencePct: number) =>
+      fitRating({ ...facts, confidencePct, needDb: null }).rating?.parDb ?? fit.parDb;
+    const ofModel = {
+      ...fit,
+      atRuleShareDb: parAt(100 * normalShare(alpha)),
+      atLowerShareDb: parAt(LOWER_CONFIDENCE_PCT),
+    };
+    fits.set(workerId, (fits.get(workerId) ?? new Map()).set(modelId, ofModel));
+  }
   return fits;
 }
+
+type FitRow = OwnFit & { workerId: string; modelId: string; facts: FitFacts };
 
 /** What these tasks ask to be worn beside a protector. */
 export async function requiredGear(taskIds: readonly string[]): Promise<WornGear[]> {
@@ -109,13 +122,6 @@ export async function requiredGear(taskIds: readonly string[]): Promise<WornGear
   );
   return found.map(({ gear }) => gear);
 }
-
-/** Under a protector no threshold acts, and no table is read. @source osha-1910.95 App. B */
-export const lawAtEar = (governing: RuleSetVersion): ExchangeLaw => ({
-  ...lawOf(outsideCriterion(governing)),
-  table: null,
-  thresholdDb: null,
-});
 
 /** A task of a nominal day as it is before anybody wears anything. */
 export const bareTask = (

@@ -11,6 +11,7 @@ import {
   presentDayFigures,
 } from "../presenters/day-figures";
 import { type DayRefs, hydrateDays, ruleSetsOf } from "./day-inputs";
+import { wearingSeen } from "./own-attenuation";
 
 interface Found extends DayFiguresRow {
   workerId: string;
@@ -77,6 +78,9 @@ async function view(found: Found | null): Promise<z.input<typeof ResultView>> {
      UNION ALL SELECT p.id, m.name || ', ' || p.number, p.reason FROM protector_model_revisions p JOIN protector_models m ON m.id = p.model_id WHERE p.id = ANY (CAST(:modelIds AS uuid[]))`,
         { levelIds: `{${levelIds.join(",")}}`, modelIds: `{${modelIds.join(",")}}` },
       );
+  const timedIds = isComputed
+    ? refs.shifts.flatMap(({ tasks }) => tasks.flatMap(({ id, use }) => (use ? [id] : [])))
+    : [];
   const findings = await rows<{ id: string; kind: string; state: string }>(
     "SELECT f.id, f.kind, f.state FROM finding_evidence e JOIN findings f ON f.id = e.finding_id WHERE e.worker_id = :workerId AND e.date = :date ORDER BY f.opened_at",
     { workerId, date },
@@ -112,6 +116,28 @@ async function view(found: Found | null): Promise<z.input<typeof ResultView>> {
     evaluation: input && method ? method.evaluateDay(input, governing, comparison) : null,
     sources: Object.fromEntries(sources.map(({ id, label, note }) => [id, { label, note }])),
     findings,
+    wearingSeen: await wearingThatDiffers(workerId, date, timedIds),
     earlier: earlier.map((one) => ({ ...one, computedAt: one.computedAt.toISOString() })),
   };
+}
+
+/** Less of a difference is within what a few looks can tell, percentage points. Common practice, no source. */
+const DIFFERS_FROM_PCT = 10;
+
+/** Tasks whose stated wearing time is not what the rounds of that time saw. */
+function wearingThatDiffers(
+  workerId: string,
+  date: string,
+  timedIds: readonly string[],
+): Promise<ResultView["wearingSeen"]> {
+  return rows<ResultView["wearingSeen"][number]>(
+    `SELECT x."taskId", x."taskName", x."statedPct", (x.seen->>0)::int AS "wornCount", (x.seen->>1)::int AS "seenCount"
+     FROM (SELECT DISTINCT t.task_id AS "taskId", k.name AS "taskName", t.worn_pct AS "statedPct",
+         ${wearingSeen("CAST(:workerId AS uuid)", "t.task_id", "CAST(:date AS date)")}::jsonb AS seen
+       FROM shift_tasks t JOIN tasks k ON k.id = t.task_id
+       WHERE t.id = ANY (CAST(:timedIds AS uuid[])) AND t.worn_pct IS NOT NULL) x
+     WHERE x.seen IS NOT NULL AND abs(100.0 * (x.seen->>0)::int / (x.seen->>1)::int - x."statedPct") > ${DIFFERS_FROM_PCT}
+     ORDER BY x."taskName"`,
+    { workerId, date, timedIds: `{${timedIds.join(",")}}` },
+  );
 }

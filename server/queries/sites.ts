@@ -14,7 +14,7 @@ export type SiteRow = Omit<SiteView, "can" | "settings" | "settingsHistory"> & {
 
 /** SQL: how sure a fit has to be at a site `s`, and when it is tested again. */
 export const FIT_POLICY = `json_build_object('confidencePct', s.fit_confidence_pct, 'everyMonths', s.fit_every_months,
-  'afterFailDays', s.fit_after_fail_days)`;
+  'afterFailDays', s.fit_after_fail_days, 'firstDays', s.fit_first_days)`;
 
 /** Sites with all their settings, the latest first. */
 export async function listSites(actor: Actor, id: string | null = null): Promise<SiteRow[]> {

@@ -7,6 +7,7 @@ import { type Actor, visible } from "../lib/policy";
 import { crewPolicy, noticePolicy, programmePolicy, sitePolicy } from "../policies";
 import { findNotices, summarize } from "./entry-notices";
 import { listFindings } from "./finding-view";
+import { lettersWaiting } from "./letters";
 import { nextShiftSql } from "./next-shift";
 
 interface CrewRow {
@@ -71,6 +72,7 @@ export async function waitingFor(
     crews,
     findings: findings.rows.filter(({ state }) => state !== "done"),
     next: findings.next,
+    letters: await lettersWaiting(actor, siteId),
     toBeChecked: findings.rows.filter(({ state }) => state === "done"),
     outgoing: [...byEntry].map(([entryId, notices]) => summarize(entryId, notices)),
     troubled,

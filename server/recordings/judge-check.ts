@@ -101,19 +101,21 @@ export function judgeCheck(
   const onBands = on?.bands.map((band, index) => reducedActive(band, off.bands[index]!)) ?? null;
   const ear = earAttenuation(offBands, onBands, correction.bandsDb);
   const found = new Set<CheckCode>(warnings);
+  const isRelative = calibration.kind === "none";
   if (looksSwapped(off.bands)) found.add("channels-swapped");
-  if (calibration.kind === "none") found.add("not-calibrated");
+  if (isRelative) found.add("not-calibrated");
   const heard = offBands.filter(({ noiseReductionDb }) => noiseReductionDb !== null).length;
   if (heard === 0) found.add("no-common-noise");
   else if (heard < offBands.length) found.add("bands-left-out");
-  const isRated = !found.has("channels-swapped") && calibration.kind !== "none";
+  const isRated = !found.has("channels-swapped") && !isRelative;
   const bandsDb = spectrum?.bandsDb ?? null;
   const parDb = isRated ? personalAttenuationDb(ear.attenuationDb, bandsDb) : null;
   if (parDb !== null && parDb > boneConductionLimitDb(bandsDb ?? undefined))
     found.add("above-bone-conduction");
   const statedDb = active && activeAttenuationDb(active);
-  const check =
-    ear.activeDb && !found.has("channels-swapped") ? checkActivePart(statedDb, ear.activeDb) : null;
+  // Inside louder than outside may there be the microphones; turned round, an active part only seems to add noise.
+  const canBeHeld = isRelative || !found.has("channels-swapped");
+  const check = ear.activeDb && canBeHeld ? checkActivePart(statedDb, ear.activeDb) : null;
   if (on && statedDb === null) found.add("no-active-part");
   if (check && check.hasPassed === null) found.add("active-bands-unheard");
   return {
@@ -123,12 +125,10 @@ export function judgeCheck(
       noiseReductionDb: [...ear.noiseReductionDb],
       attenuationDb: [...ear.attenuationDb],
       activeDb: ear.activeDb && [...ear.activeDb],
+      isRelative,
     },
     parDb,
-    methodSdDb: methodSdDb(
-      calibration.kind === "none" ? "alike" : calibration.kind,
-      correction.kind,
-    ),
+    methodSdDb: methodSdDb(isRelative ? "alike" : calibration.kind, correction.kind),
     active: check && { ...check, shortfallDb: [...check.shortfallDb] },
     warnings: [...found],
   };

@@ -195,12 +195,7 @@ function toneFeed(job: ToneJob, format: WavFormat): Feed {
       }
     },
     finish(refuseOrKeep) {
-      for (const [index, clip] of clips.entries())
-        refuseClipped(
-          index,
-          { ...clip, sharePct: (100 * clip.samples) / clip.total },
-          refuseOrKeep,
-        );
+      for (const [index, clip] of clips.entries()) refuseClipped(index, clip, refuseOrKeep);
       const tones = readings.map((reading) => reading.finish());
       if (!tones.some(({ found }) => found)) throw noTone(tones);
       return { tones };

@@ -1,3 +1,4 @@
+import { randomBytes } from "node:crypto";
 import { createI18n, isLocale } from "../../shared/i18n";
 import {
   GapNames,
@@ -6,10 +7,12 @@ import {
   YearDictionaryQuery,
   YearFileQuery,
   YearQuery,
+  YearRecordsQuery,
 } from "../../shared/schemas/waiting";
 import type { Config } from "../config";
 import { streamYear } from "../exports/year-csv";
 import { yearDictionary } from "../exports/year-dictionary";
+import { streamYearZip } from "../exports/year-zip";
 import { recordAudit } from "../lib/audit";
 import { inTransaction } from "../lib/db";
 import { endpoint } from "../lib/endpoint";
@@ -25,14 +28,14 @@ async function siteToExport(actor: Actor, siteId: string): Promise<Site> {
 }
 
 /** A file name that every system takes. */
-const fileName = (site: string, year: number) =>
+const fileName = (site: string, year: number, ending: "csv" | "zip") =>
   `${
     site
       .normalize("NFKD")
       .replace(/[^A-Za-z0-9]+/g, "-")
       .replace(/^-+|-+$/g, "")
       .toLowerCase() || "site"
-  }-${year}.csv`;
+  }-${year}.${ending}`;
 
 export function defineExportRoutes(config: Pick<Config<"web">, "DATABASE_URL">): void {
   endpoint.get(
@@ -56,9 +59,49 @@ export function defineExportRoutes(config: Pick<Config<"web">, "DATABASE_URL">):
         return found;
       });
       response
-        .attachment(fileName(site.name, query.year))
+        .attachment(fileName(site.name, query.year, "csv"))
         .type("text/csv; charset=utf-8; header=present");
       await streamYear(config.DATABASE_URL, actor, query, response);
+    },
+  );
+
+  endpoint.get(
+    "/exports/year.zip",
+    {
+      summary: "A site's year with all its records and the means to check them, as a ZIP, streamed",
+      may: may.export,
+      query: YearRecordsQuery,
+      streams: true,
+    },
+    async ({ actor, query, response }) => {
+      const record = (action: string, values: Record<string, unknown>) =>
+        inTransaction({ organizationId: actor.organizationId }, async () => {
+          const site = await siteToExport(actor, query.siteId);
+          await recordAudit(actor, { action, subjectKind: "site", subjectId: site.id, values });
+          return site;
+        });
+      const { year, workers } = query;
+      const site = await record("export-year-records", { year, workers });
+      const salt = randomBytes(16).toString("hex");
+      response.attachment(fileName(site.name, year, "zip")).type("application/zip");
+      try {
+        // A file that somebody holds as whole is one that the trail knows by its manifest.
+        await streamYearZip(
+          actor,
+          { siteId: site.id, year, workers, salt },
+          new Date(),
+          response,
+          async (manifestSha256) => {
+            await record("finish-year-records", { year, workers, manifestSha256 });
+          },
+        );
+        response.end();
+      } catch (error) {
+        // Cut off in the middle, it has no list of files and no manifest.
+        if (response.headersSent) response.destroy();
+        else response.removeHeader("content-disposition");
+        throw error;
+      }
     },
   );
 

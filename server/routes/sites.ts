@@ -1,5 +1,5 @@
 import { IdParams } from "../../shared/schemas/common";
-import { FitDistribution, FitPolicyInput } from "../../shared/schemas/fit";
+import { FitDistribution, FitPolicyInput, FitPolicyPreview } from "../../shared/schemas/fit";
 import {
   NewSiteInput,
   SiteInput,
@@ -19,6 +19,7 @@ import { Site } from "../models/site";
 import { may, sitePolicy } from "../policies";
 import { presentSite } from "../presenters/site";
 import { fitDistribution } from "../queries/fit-distribution";
+import { previewFitPolicy } from "../queries/fit-policy-preview";
 import { listSites } from "../queries/sites";
 
 const view = async (actor: Actor, id: string) =>
@@ -95,6 +96,23 @@ export function defineSiteRoutes(): void {
       await requireRevision(site, ifMatch, async () => before);
       await setFitPolicy(actor, site, before.fitPolicy, body);
       return view(actor, site.id);
+    },
+  );
+
+  endpoint.post(
+    "/sites/:id/fit-policy/preview",
+    {
+      summary: "What would be due by another policy of fitting",
+      may: may.officer,
+      params: IdParams,
+      body: FitPolicyInput,
+      reply: FitPolicyPreview,
+      storesNothing: true,
+    },
+    async ({ actor, params, body }) => {
+      const site = await findVisible(Site, sitePolicy, params.id, actor);
+      authorize(sitePolicy, actor, "changeRules", site);
+      return previewFitPolicy(site, body);
     },
   );
 

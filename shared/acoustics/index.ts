@@ -68,7 +68,6 @@ export {
   type RatingComparison,
   type RatingName,
   roundedUsRating,
-  slc80OfBandsDb,
   usRatingOfLabelDb,
 } from "./protection/ratings";
 export {

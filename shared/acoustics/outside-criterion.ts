@@ -1,4 +1,4 @@
-import { isSameLaw, lawOf } from "./exchange-law";
+import { type ExchangeLaw, isSameLaw, lawOf } from "./exchange-law";
 import type { Criterion, RuleSetVersion } from "./types";
 
 /**
@@ -16,6 +16,13 @@ export function outsideCriterion(ruleSet: RuleSetVersion): Criterion {
   if (!limit) throw new RangeError(`Rule set ${ruleSet.key} has neither action value nor limit`);
   return limit;
 }
+
+/** Under a protector no threshold acts, and no table is read. @source osha-1910.95 App. B */
+export const lawAtEar = (ruleSet: RuleSetVersion): ExchangeLaw => ({
+  ...lawOf(outsideCriterion(ruleSet)),
+  table: null,
+  thresholdDb: null,
+});
 
 /** Both criteria are about one and the same number of a day: one figure may stand for both. */
 export function isSameFigure(a: Criterion, b: Criterion): boolean {

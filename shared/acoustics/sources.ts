@@ -75,7 +75,7 @@ export const SOURCES = {
   "as-nzs-1270": {
     title: /*i18n*/ "AS/NZS 1270, Acoustic hearing protectors",
     edition: "2002",
-    note: "SLC80 comes off the C-weighted level.",
+    note: "SLC80 is taken from the label and comes off the C-weighted level; the classes from memory. It is not recomputed from bands: the reference noise was not read.",
     status: "from-memory",
   },
   "iec-61252": {

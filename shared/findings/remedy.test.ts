@@ -110,6 +110,25 @@ test("one protector for the whole day comes before any two", () => {
   expect(found?.left).toBeNull();
 });
 
+test("of several that would do for the whole day it is the one that Choose offers first", () => {
+  // Both leave the same by one deviation, 25 − 3 and 22 less 4; at lower confidence 25 − 1.64 · 3 is less than 22.
+  const flat = (dB: number) => Array<number>(8).fill(dB) as never;
+  const pink = { ...level(100), octaveBandsDb: flat(92) };
+  const spread = { ...middle, bands: { meanDb: flat(25), sdDb: flat(3) } };
+  const steady = {
+    ...device("Steady muff", "earmuff", 22),
+    bands: { meanDb: flat(22), sdDb: flat(0) },
+  };
+  const inPink = day({ ...task("Grinding", 480, 100), level: pink });
+  expect(proposeRemedy(inPink, UK, [spread, steady])?.remedy?.names).toEqual(["Steady muff"]);
+  // Appendix B has no word for too much: by EN 458 95 − 30 = 65 is, and 95 − 20 = 75 is not (memory).
+  const loud = day(byAWeighting(task("Mill", 480, 95)));
+  expect(
+    proposeRemedy(loud, US, [device("Strong", "earmuff", 30), device("Fair", "earmuff", 20)])
+      ?.remedy?.names,
+  ).toEqual(["Fair"]);
+});
+
 test("a day whose tasks lie far apart needs two: one for most of it, another in the task that it does not fit", () => {
   // 110 − 30 = 80 good, 88 − 30 = 58 far too much, 110 − 10 = 100 too little, 88 − 10 = 78 good.
   const input = day(

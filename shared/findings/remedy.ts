@@ -1,5 +1,7 @@
 import { evaluateDay } from "../acoustics/day";
+import { lawAtEar } from "../acoustics/outside-criterion";
 import { isInNoise } from "../acoustics/protection/at-ear";
+import { ProtectorChoice } from "../acoustics/protection/choose-protector";
 import type {
   DayEvaluation,
   DayInput,
@@ -10,6 +12,7 @@ import type {
   TaskAtEar,
   TimedTask,
 } from "../acoustics/types";
+import { besideScaleDb } from "../rule-sets";
 
 /** One protector, or a plug under a muff. */
 export interface Devices {
@@ -52,7 +55,7 @@ const MOST_PLANS = 40;
 
 /**
  * What to give a worker so that this day would have been right, worn throughout in every task in noise: one protector
- * for the whole day where one is enough; else the fewest by task. Where the worker's own would do if they were worn
+ * for the whole day where one is enough, the first of them in the order of `ProtectorChoice`; else the fewest by task. Where the worker's own would do if they were worn
  * throughout, or nothing on the register does, it says what is left. Null where the rule has no word for a protector,
  * or no task of the day is in noise.
  */
@@ -194,14 +197,39 @@ class Search {
 
   private bestForTheDay(options: readonly Option[]): Proposal | null {
     const right = options.filter(({ evaluation }) => this.isRight(evaluation));
-    const [best] = right.toSorted(
-      (a, b) =>
-        rankOf(a.evaluation) - rankOf(b.evaluation) ||
-        (a.evaluation.atEarDb ?? Number.POSITIVE_INFINITY) -
-          (b.evaluation.atEarDb ?? Number.POSITIVE_INFINITY),
-    );
+    const best = this.firstChosen(right);
     if (!best) return null;
     return this.proposal(this.planOf(best), best.evaluation);
+  }
+
+  /** The one that Choose would offer first for the noise of this day. */
+  private firstChosen(options: readonly Option[]): Option | undefined {
+    const { input, governing } = this;
+    if (options.length < 2) return options[0];
+    const { protection } = governing;
+    const noises = input.shifts.flatMap(({ tasks }) =>
+      tasks.flatMap((task) => {
+        const { name, level, durationMin } = task;
+        const counts =
+          protection.adequacy === "appendix-b" ||
+          input.mustWear ||
+          isInNoise(task, input.site.wearFromDb);
+        return level !== null && durationMin > 0 && counts ? [{ name, level, durationMin }] : [];
+      }),
+    );
+    const [first] = new ProtectorChoice(
+      options.map(({ inner, outer }) => ({ ...NOTHING_BESIDE, inner, outer, name: inner.name })),
+      protection,
+      lawAtEar(governing),
+      besideScaleDb(governing),
+    ).for({
+      noises,
+      personalTargetDb: input.personalTargetDb,
+      wornGear: [],
+      wornMin: noises.reduce((sum, { durationMin }) => sum + durationMin, 0),
+      fits: new Map(),
+    });
+    return options.find(({ inner }) => inner.modelId === first?.modelId);
   }
 
   /** A rule with a word for each task: one option for most of them, others where it will not do; few changes first. */
@@ -384,6 +412,14 @@ class Search {
     );
   }
 }
+
+/** A finding asks what would have put the noise right; gear, stock and fit are asked where one is given out. */
+const NOTHING_BESIDE = {
+  combinationBands: null,
+  worksWith: { helmet: null, glasses: null, respirator: null },
+  isArchived: false,
+  stock: null,
+} as const;
 
 const leftIn = (kind: LeftToDo["kind"], noise: Noise | undefined): LeftToDo => ({
   kind,

@@ -50,6 +50,8 @@ export function codeText(i18n: I18n, code: string, params: ProblemParams): strin
       return i18n.t("A finding for this cause is open already.");
     case "finding-closed":
       return i18n.t("This finding is closed.");
+    case "plan-put-aside-already":
+      return i18n.t("This plan has been put aside already.");
     case "notice-sent-already":
       return i18n.t("The notice has gone out already.");
     case "code-used":
@@ -95,6 +97,21 @@ export function codeText(i18n: I18n, code: string, params: ProblemParams): strin
       return i18n.t("The mail server can’t be reached. The notice waits and is not lost.");
     case "provider-down":
       return i18n.t("The sign-in service can’t be reached. Try again in a moment.");
+    case "link-used":
+      return i18n.t("This link has been used: the letter is acknowledged.");
+    case "link-expired":
+      return i18n.t("This link has run out. Ask the safety officer for the letter on paper.");
+    case "link-not-yours":
+      return i18n.t(
+        "This letter is to somebody else than the person signed in here. Sign out, or open the link on your own device.",
+      );
+    case "roster-unconfirmed":
+      return i18n.t(
+        "{leavers, plural, one {# worker} other {# workers}} of {present} would leave. Nothing was stored; confirm it first.",
+        { leavers: params.leavers ?? 0, present: params.present ?? 0 },
+      );
+    case "letter-acknowledged":
+      return i18n.t("This letter is acknowledged already.");
     case "draining":
       return i18n.t("The server is not ready. Try again in a moment.");
     case "internal":

@@ -138,6 +138,8 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       );
     case "hml-all-three":
       return i18n.t("H, M and L belong together: all three, or none.");
+    case "delay-too-long":
+      return i18n.t("A canceller’s delay is at most a tenth of a second, 100 000 µs.");
     case "deviation-negative":
       return i18n.t("A standard deviation can’t be negative: type it without the minus.");
     case "too-many-bands":
@@ -249,8 +251,28 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("Photographs (PNG, JPEG, WebP) and PDF are taken, nothing else.");
     case "file-attached-already":
       return i18n.t("This file stands here already.");
+    case "measure-without-date":
+      return i18n.t("Say by when it is to be done, or when it was done.");
+    case "employee-numbers-unknown":
+      return i18n.t("Nobody at this site has {numbers}.", { numbers: String(params.numbers) });
+    case "site-stays":
+      return i18n.t("It stays with its site: strike it out and enter it at the other.");
+    case "not-of-this-site":
+      return i18n.t("This person has no part in the site’s findings.");
+    case "flat-or-bands":
+      return i18n.t("Say how much less in one figure, or by bands, not both.");
+    case "task-without-bands":
+      return i18n.t("No octave bands of this task are known: give one figure for all of it.");
+    case "worker-not-in-scope":
+      return i18n.t("This worker is not among those the changes are tried for.");
+    case "protector-unknown":
+      return i18n.t("This protector is not on the register in use.");
+    case "criterion-unknown":
+      return i18n.t("The rules of this site have no such criterion.");
     case "reading-empty":
       return i18n.t("This row says nothing yet. Type a figure, or take the row out.");
+    case "signed-before-written":
+      return i18n.t("The letter was written later than that.");
     case "in-the-future":
       return i18n.t("This date lies ahead.");
     case "look-twice":

@@ -56,6 +56,16 @@ export function mainLimit(ruleSet: RuleSetVersion): Criterion {
 /** A criterion as an 8-hour level, dB. */
 export const levelOf = (criterion: Criterion): number => criterion.levelDb ?? criterion.value;
 
+/**
+ * Where a rule has no scale for a protector that takes too much: the value from which EN 458's words stand beside its
+ * own, dB: its action value, else its target. Null where the rule has that scale, or no word for a protector at all.
+ */
+export function besideScaleDb({ criteria, protection }: RuleSetVersion): number | null {
+  if (protection.adequacy !== "appendix-b") return null;
+  const action = criteria.find(({ kind }) => kind === "action");
+  return action ? levelOf(action) : protection.targetDb;
+}
+
 /** The value from which the words for a protector hang, dB; null where the rule has no such scale. */
 export function actionValueDb(ruleSet: RuleSetVersion): number | null {
   return ruleSet.protection.adequacy === "en-458" ? ruleSet.protection.targetDb : null;

@@ -36,6 +36,8 @@ export const MethodRow = z.object({
   protectedPct: z.number().nullable(),
   derating: z.enum(["none", "half", "by-type"]).nullable(),
   reachedBy: z.enum(["most", "few"]).nullable(),
+  /** The outside level that its figure comes off: A-weighted, C-weighted, or band by band. */
+  startsFrom: z.enum(["la", "lc", "bands"]),
   /** Without programme audio, active part off, dB(A). */
   atEarDb: z.number().nullable(),
   /** Taken off the outside level, before any clamp, dB. */

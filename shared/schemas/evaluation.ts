@@ -93,10 +93,18 @@ export const Attenuation = as<BandAttenuation>()(
   z.object({ meanDb: OctaveBands, sdDb: OctaveBands }),
 );
 
+/** No canceller is this late, s. */
+const MOST_DELAY_S = 0.1;
+
 export const Active = as<ActivePart>()(
   z.object({
     attenuationDb: OctaveBands.nullable(),
-    delayS: z.number().min(0).max(0.1).nullable(),
+    // The limit has a text of its own, for screens show the delay in µs.
+    delayS: z
+      .number()
+      .min(0)
+      .refine((delayS) => delayS <= MOST_DELAY_S, { params: { code: "delay-too-long" } })
+      .nullable(),
     gain: z.number().min(0).max(2).nullable(),
     maximumDb: z.number().min(0).max(60).nullable(),
     bandwidthHz: z.number().min(50).max(16_000).nullable(),

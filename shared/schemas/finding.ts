@@ -93,6 +93,8 @@ export const FindingRow = z.object({
   crewName: z.string().nullable(),
   figures: DayFigures.nullable(),
   ownerName: z.string().nullable(),
+  /** Overdue, it went up to a named person. */
+  wentUp: z.object({ name: z.string(), on: IsoDate }).nullable(),
   revision: z.number(),
   can: Can("handle", "markDone", "comment"),
 });
@@ -108,7 +110,16 @@ export const FindingFilter = PageQuery.extend({
 
 export const FindingStep = z.object({
   id: z.uuid(),
-  kind: z.enum(["state", "comment", "marked-done", "cannot", "evidence-gone", "rules-changed"]),
+  kind: z.enum([
+    "state",
+    "comment",
+    "marked-done",
+    "cannot",
+    "evidence-gone",
+    "rules-changed",
+    "handed-over",
+    "escalated",
+  ]),
   fromState: FindingState.nullable(),
   toState: FindingState.nullable(),
   text: z.string().nullable(),
@@ -139,6 +150,12 @@ export type FindingView = z.infer<typeof FindingView>;
 /** One step in a finding's life. Closing needs a reason; a comment alone changes no state. */
 export const FindingStepInput = z.discriminatedUnion("kind", [
   z.object({ kind: z.literal("take-in-hand"), dueOn: IsoDate.nullable().default(null) }),
+  /** To an officer or a supervisor of the site. */
+  z.object({
+    kind: z.literal("hand-over"),
+    ownerId: z.uuid(),
+    dueOn: IsoDate.nullable().default(null),
+  }),
   z.object({ kind: z.literal("mark-done"), text: z.string().trim().max(2000).default("") }),
   z.object({ kind: z.literal("cannot"), text: Reason }),
   z.object({ kind: z.literal("reopen"), text: Reason }),

@@ -39,6 +39,8 @@ export const EarBands = z.object({
   attenuationDb: BandOrNull,
   /** With the active part on less with it off, dB; null: no such pair. */
   activeDb: BandOrNull.nullable(),
+  /** The microphones were not calibrated: of these only `activeDb`, a difference of two, is more than relative. */
+  isRelative: z.boolean().default(false),
 });
 export type EarBands = z.infer<typeof EarBands>;
 
@@ -140,8 +142,14 @@ export const Candidate = z.object({
   wornIn: z.string().nullable(),
   /** The shift's TWA with it on, where the rule judges the shift. */
   twaDb: z.number().nullable(),
-  /** By how far the lower-confidence level at the ear stays under the target, dB. */
+  /** EN 458's word beside the rule's, where that has no scale for too much. */
+  scaleWord: z
+    .enum(["too-little", "just-enough", "good", "strong-side", "too-much", "enough"])
+    .nullable(),
+  /** By how far the level at the ear stays under the target at the confidence compared, dB. */
   marginDb: z.number().nullable(),
+  /** Users protected by that much, percent; null: the share that the rule's own method protects. */
+  marginSharePct: z.number().nullable(),
   lastFit: z
     .object({ parDb: z.number(), hasPassed: z.boolean().nullable(), testedOn: IsoDate })
     .nullable(),
@@ -153,6 +161,7 @@ export const Candidate = z.object({
     "first",
     "compatibility",
     "adequacy",
+    "overprotection",
     "margin",
     "fit",
     "battery",
@@ -183,6 +192,8 @@ export const FittingDesk = z.object({
     afterFailDays: z.number().nullable(),
   }),
   candidates: z.array(Candidate),
+  /** Two together, where every single one leaves too little. */
+  pairs: z.array(Candidate),
   tests: z.array(FitTestView),
   issued: z.array(
     z.object({
@@ -307,8 +318,20 @@ export const FitPolicyInput = z.object({
   confidencePct: ConfidencePct,
   everyMonths: z.number().int().min(1).max(120).nullable(),
   afterFailDays: z.number().int().min(1).max(365).nullable(),
+  /** Within which a device never tested on its wearer has its test. Common practice, no source. */
+  firstDays: z.number().int().min(1).max(365).default(90),
 });
 export type FitPolicyInput = z.infer<typeof FitPolicyInput>;
+
+/** What a policy would make due at a site. */
+export const FitPolicyPreview = z.object({
+  dueNowCount: z.number(),
+  /** Wearers of a device that was never tested on them, whose test would be due later. */
+  untestedCount: z.number(),
+  untestedFrom: IsoDate.nullable(),
+  untestedTo: IsoDate.nullable(),
+});
+export type FitPolicyPreview = z.infer<typeof FitPolicyPreview>;
 
 /** Octave bands of both microphones, typed in place of a recording. */
 export const TypedMicrophones = z.object({

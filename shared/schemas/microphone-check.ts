@@ -132,6 +132,10 @@ export const CheckAnalysis = z.object({
 });
 export type CheckAnalysis = z.infer<typeof CheckAnalysis>;
 
+/** A fit test can come of it: a rating was found, or without one whether the active part does its work. */
+export const isKeepable = ({ parDb, active }: Pick<CheckAnalysis, "parDb" | "active">): boolean =>
+  parDb !== null || (active !== null && active.hasPassed !== null);
+
 export const MicrophoneCheckView = z.object({
   id: z.uuid(),
   revision: z.number(),

@@ -32,6 +32,7 @@ export const PROBLEM_CODES = [
   "finding-open-already",
   "finding-closed",
   "notice-sent-already",
+  "plan-put-aside-already",
   "code-used",
   "code-expired",
   "code-unknown",
@@ -45,6 +46,11 @@ export const PROBLEM_CODES = [
   "same-file",
   "wrong-state",
   "already-out",
+  "link-used",
+  "link-expired",
+  "link-not-yours",
+  "letter-acknowledged",
+  "roster-unconfirmed",
   "draining",
 ] as const;
 export type ProblemCode = (typeof PROBLEM_CODES)[number];

@@ -35,7 +35,7 @@ describe("what a certificate can't say is refused at its field, in words of its 
     [
       "a negative deviation",
       { bands: { meanDb: same(25), sdDb: [2, 2, 2, 2, -2, 2, 2, 2] } },
-      "bands.sdDb",
+      "bands.sdDb.4",
       "deviation-negative",
     ],
     [
@@ -69,6 +69,12 @@ describe("what a certificate can't say is refused at its field, in words of its 
       "delay-and-gain-together",
     ],
     [
+      "a delay of a second",
+      { active: { ...ACTIVE, delayS: 1, gain: 0.9 } },
+      "active.delayS",
+      "delay-too-long",
+    ],
+    [
       "few users below most",
       { percentile: { mostDb: 25, fewDb: 18 } },
       "percentile.fewDb",
@@ -77,7 +83,7 @@ describe("what a certificate can't say is refused at its field, in words of its 
     [
       "a negative deviation of the US label",
       { usLabel: { meanDb: Array(9).fill(25), sdDb: [3, 3, 3, 3, 3, 3, 3, 3, -3] } },
-      "usLabel.sdDb",
+      "usLabel.sdDb.8",
       "deviation-negative",
     ],
   ])("%s", (_what, fields, path, code) => {

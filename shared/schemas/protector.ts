@@ -23,7 +23,8 @@ export function plausible(context: Context): void {
   )
     add(["mDb"], "hml-all-three");
   if (bands) for (const { path, code } of faultsOfBands(bands)) add(["bands", ...path], code);
-  if (usLabel?.sdDb.some((value) => value < 0)) add(["usLabel", "sdDb"], "deviation-negative");
+  for (const band of belowZero(usLabel?.sdDb ?? []))
+    add(["usLabel", "sdDb", band], "deviation-negative");
   if (percentile && percentile.fewDb < percentile.mostDb)
     add(["percentile", "fewDb"], "few-below-most");
   if (active && (active.delayS === null) !== (active.gain === null))
@@ -37,11 +38,11 @@ export function plausible(context: Context): void {
     );
 }
 
-/** Means and deviations that no test gives, each under its row. */
+/** Means and deviations that no test gives, each under its band; under its row where the row as a whole is meant. */
 function faultsOfBands({ meanDb, sdDb }: BandAttenuation) {
   const faults: { path: (string | number)[]; code: string }[] = [];
-  if (sdDb.some((value) => value !== null && value < 0))
-    faults.push({ path: ["sdDb"], code: "deviation-negative" });
+  for (const band of belowZero(sdDb))
+    faults.push({ path: ["sdDb", band], code: "deviation-negative" });
   if ((meanDb[0] === null) !== (sdDb[0] === null))
     faults.push({ path: ["sdDb", 0], code: "band-missing" });
   const negative = takesNothing(meanDb);
@@ -50,12 +51,15 @@ function faultsOfBands({ meanDb, sdDb }: BandAttenuation) {
   return faults;
 }
 
+const belowZero = (valuesDb: readonly (number | null)[]): number[] =>
+  valuesDb.flatMap((db, band) => (db !== null && db < 0 ? [band] : []));
+
 /** A cup may let a little more through in one low band; what is below zero in most was typed with its sign turned. */
 const MOST_BANDS = 4;
 
 /** The first band below zero where most are; null: they aren't. */
 function takesNothing(meanDb: OctaveBandValues): number | null {
-  const below = meanDb.flatMap((bandDb, band) => (bandDb !== null && bandDb < 0 ? [band] : []));
+  const below = belowZero(meanDb);
   return below.length >= MOST_BANDS ? below[0]! : null;
 }
 

@@ -43,6 +43,16 @@ export const ResultView = z.object({
   evaluation: z.custom<DayEvaluation>().nullable(),
   sources: z.record(z.string(), z.object({ label: z.string(), note: z.string().nullable() })),
   findings: z.array(z.object({ id: z.uuid(), kind: z.string(), state: z.string() })),
+  /** Where rounds saw it worn much more or less than the shift states; what it states counts. */
+  wearingSeen: z.array(
+    z.object({
+      taskId: z.uuid(),
+      taskName: z.string(),
+      statedPct: z.number(),
+      wornCount: z.number(),
+      seenCount: z.number(),
+    }),
+  ),
   earlier: z.array(ResultRef),
 });
 export type ResultView = z.infer<typeof ResultView>;

@@ -56,6 +56,8 @@ export const WaitingView = z.object({
   findings: z.array(FindingRow),
   next: z.string().nullable(),
   toBeChecked: z.array(FindingRow),
+  /** Letters of results to print or give by hand, and those that are late. */
+  letters: z.object({ toPrint: z.number(), late: z.number() }),
   outgoing: z.array(EntryNotices),
   /** Not taken by the mail server, or nobody knows. */
   troubled: z.array(NoticeRow),
@@ -67,6 +69,7 @@ export type WaitingView = z.infer<typeof WaitingView>;
 export const GapKind = z.enum([
   "not-measured",
   "no-protector",
+  "not-trained",
   "notice-late",
   "notice-not-sent",
   "not-assessed",
@@ -78,6 +81,10 @@ export const YearQuery = z.object({
 /** Workers in the file by employee number, or by name. */
 export const YearFileQuery = YearQuery.extend({
   workers: z.enum(["number", "name"]).default("number"),
+});
+/** The same for the file with all records, where workers may also stand under names made up for it. */
+export const YearRecordsQuery = YearQuery.extend({
+  workers: z.enum(["number", "name", "pseudonym"]).default("number"),
 });
 /** Without a language: the reader's own. */
 export const YearDictionaryQuery = z.object({ language: Language.optional() });

@@ -19,6 +19,8 @@ export function FileInput({
   accept,
   atMost,
   isCamera = false,
+  isOptional = true,
+  fault,
   files,
   onFiles,
 }: {
@@ -27,6 +29,9 @@ export function FileInput({
   atMost: number;
   /** Opens a phone's camera. */
   isCamera?: boolean;
+  isOptional?: boolean;
+  /** What is wrong with the field, beside what was wrong with a file. */
+  fault?: string | undefined;
   files: readonly FileView[];
   onFiles: (files: readonly FileView[]) => void;
 }) {
@@ -49,7 +54,7 @@ export function FileInput({
   }
 
   return (
-    <Field label={label} error={error} isOptional>
+    <Field label={label} error={error ?? fault} isOptional={isOptional}>
       {({ readOnly: _, "aria-required": __, ...wires }) => (
         <div className="file-input">
           <input

@@ -403,15 +403,24 @@ function ParsedField<Values extends FieldValues, Output, Value>({
   );
 }
 
-export function NumberField<Values extends FieldValues, Output>(props: FieldProps<Values, Output>) {
+export function NumberField<Values extends FieldValues, Output>({
+  factor = 1,
+  ...props
+}: FieldProps<Values, Output> & {
+  /** What is typed is the form's value times this: 1e6 where it has s and the field µs. */
+  factor?: number;
+}) {
   const locale = useLocale();
   return (
     <ParsedField
       {...props}
       kind="number"
       code="not-a-number"
-      parse={(text) => parseNumber(text, locale)}
-      write={(value: number) => fieldNumber(value, locale)}
+      parse={(text) => {
+        const parsed = parseNumber(text, locale);
+        return parsed.kind === "ok" ? { kind: "ok", value: parsed.value / factor } : parsed;
+      }}
+      write={(value: number) => fieldNumber(value * factor, locale)}
     />
   );
 }

@@ -26,6 +26,7 @@ import { gearWord } from "../lib/register-words";
 import { paths } from "../paths";
 import { ProtectorWays } from "./protector-frame";
 import { useSiteChoice } from "./site-choice";
+import "../styles/candidates.css";
 import "../styles/choosing.css";
 import "../styles/findings.css";
 

@@ -1,5 +1,5 @@
 import { useLingui } from "@lingui/react";
-import { useQuery } from "@tanstack/react-query";
+import { type UseQueryResult, useQuery } from "@tanstack/react-query";
 import { useState } from "react";
 import { useParams } from "react-router-dom";
 import type { RuleSetVersion } from "../../shared/acoustics/types";
@@ -14,6 +14,7 @@ import { formatNumber } from "../../shared/format/number";
 import { isolate } from "../../shared/i18n/isolate";
 import { RULE_SETS, ruleSetVersion } from "../../shared/rule-sets";
 import type { FindingView } from "../../shared/schemas/finding";
+import type { FollowUpView } from "../../shared/schemas/follow-up";
 import { Button, ButtonLink } from "../components/button";
 import { type DataColumn, DataTable } from "../components/data-table";
 import {
@@ -30,12 +31,18 @@ import { Failed } from "../components/failed";
 import { TextButton, TextLink } from "../components/link";
 import { Folio, MarginNote, PageBody, PageHead, Section } from "../components/page";
 import { ProtectorWord, protectorWordText } from "../components/protector-word";
+import { BetweenFindings } from "../features/findings/between-findings";
+import { Measures } from "../features/findings/measures";
+import { Papers } from "../features/findings/papers";
+import { ProofTable } from "../features/findings/proof";
 import { findingQueries } from "../features/findings/queries";
 import { StepForm } from "../features/findings/step-form";
+import { TrustTable } from "../features/findings/trust";
 import { LookAtNotices } from "../features/notices/outgoing-notice";
 import { OfficeLink } from "../features/session/office-link";
 import { useUser } from "../features/session/session";
 import { useLocale } from "../lib/i18n";
+import { gradeWord } from "../lib/register-words";
 import { paths } from "../paths";
 import { useSiteChoice } from "./site-choice";
 import "../styles/findings.css";
@@ -72,6 +79,11 @@ function Finding({ finding }: { finding: FindingView }) {
   const remedy = remedyOf(facts);
   const ruleSet = ruleSetBehind(finding);
   const who = worker?.name ?? finding.subjectName;
+  const followUp = useQuery(findingQueries.followUp(finding.id));
+  const { todayAt } = useSiteChoice();
+  const user = useUser();
+  const timeZone = user.sites.find(({ id }) => id === finding.siteId)?.timeZone ?? "UTC";
+  const mayReadPapers = user.roles.some((role) => role !== "worker" && role !== "administrator");
   return (
     <>
       <PageBody margin={<Margin finding={finding} />} marginWidthPx={240}>
@@ -130,13 +142,62 @@ function Finding({ finding }: { finding: FindingView }) {
                 )
           }
         />
+        <BetweenFindings id={finding.id} />
+        <Section title={i18n.t("What was exceeded")} id="exceeded">
+          <Evidence finding={finding} />
+        </Section>
+        <Section title={i18n.t("Can it be trusted?")} id="trust">
+          <Trust finding={finding} followUp={followUp} />
+        </Section>
+        <Section title={i18n.t("Who has been told")} id="told">
+          <Told finding={finding} />
+        </Section>
         {finding.state !== "closed" && (
-          <p className="finding-order">
-            <b>{order}.</b>{" "}
-            {figure && i18n.t("Worn throughout that would be {figure}.", { figure })}
-          </p>
+          <Section title={i18n.t("What to do today")} id="today">
+            <p className="finding-order">
+              <b>{order}.</b>{" "}
+              {figure && i18n.t("Worn throughout that would be {figure}.", { figure })}
+            </p>
+          </Section>
         )}
-        <Evidence finding={finding} />
+        {isAboutNoise(finding) && (
+          <>
+            <Section title={i18n.t("What would mend it for good")} id="measures">
+              {followUp.data ? (
+                <Measures
+                  findingId={finding.id}
+                  measures={followUp.data.measures}
+                  owners={followUp.data.owners}
+                  today={todayAt(finding.siteId)}
+                  canChange={finding.can.handle}
+                />
+              ) : (
+                <FollowUpState query={followUp} />
+              )}
+            </Section>
+            <Section title={i18n.t("The proof, measured")} id="proof">
+              {followUp.data ? (
+                <ProofTable proof={followUp.data.proof} />
+              ) : (
+                <FollowUpState query={followUp} />
+              )}
+            </Section>
+          </>
+        )}
+        {mayReadPapers && (
+          <Section title={i18n.t("Papers")} id="papers">
+            {followUp.data ? (
+              <Papers
+                findingId={finding.id}
+                files={followUp.data.files}
+                timeZone={timeZone}
+                canChange={finding.can.handle}
+              />
+            ) : (
+              <FollowUpState query={followUp} />
+            )}
+          </Section>
+        )}
         <Section title={i18n.t("What was done")} id="steps">
           <Steps finding={finding} />
           <StepForm finding={finding} />
@@ -149,6 +210,61 @@ function Finding({ finding }: { finding: FindingView }) {
             version: ruleSet.version,
           })}
       </Folio>
+    </>
+  );
+}
+
+/** Measures against noise mend what a day showed; a fit, an instrument or a gap in the record is mended otherwise. */
+const isAboutNoise = ({ kind }: FindingView) =>
+  kind === "over-limit-outside" ||
+  kind === "over-limit-at-ear" ||
+  kind === "protects-too-little" ||
+  kind === "protects-too-much" ||
+  kind === "dual-protection" ||
+  kind === "no-protector" ||
+  kind === "not-worn-long-enough" ||
+  kind === "peak-or-ceiling" ||
+  kind === "problem-reported";
+
+function FollowUpState({ query: { error, refetch } }: { query: UseQueryResult<FollowUpView> }) {
+  return error ? (
+    <Failed error={error} onRetry={() => void refetch()} />
+  ) : (
+    <p>
+      <span className="loading-line" />
+    </p>
+  );
+}
+
+function Trust({
+  finding,
+  followUp,
+}: {
+  finding: FindingView;
+  followUp: UseQueryResult<FollowUpView>;
+}) {
+  const { i18n } = useLingui();
+  const user = useUser();
+  const locale = useLocale();
+  const { figures } = finding;
+  if (!followUp.data) return <FollowUpState query={followUp} />;
+  const { grade, runs } = followUp.data;
+  return (
+    <>
+      {grade && (
+        <p className="finding-grade">
+          {i18n.t("The day’s level is {grade}.", { grade: gradeWord(i18n, grade) })}{" "}
+          {figures?.uncertaintyDb != null
+            ? i18n.t("It is known to plus or minus {uncertainty} dB.", {
+                uncertainty: formatLevel(figures.uncertaintyDb, locale),
+              })
+            : i18n.t("No uncertainty is stated for it.")}
+        </p>
+      )}
+      <TrustTable
+        runs={runs}
+        mayOpen={user.roles.some((role) => role === "officer" || role === "auditor")}
+      />
     </>
   );
 }
@@ -201,11 +317,16 @@ function Basis({ finding }: { finding: FindingView }) {
   );
 }
 
+/** Days that stand at once; the others a click away, so that what follows from them is not far below. */
+const DAYS_SHOWN = 6;
+
 function Evidence({ finding }: { finding: FindingView }) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const { evidence, worker } = finding;
-  const frame = useTableFrame(evidence);
+  const [showsAll, setShowsAll] = useState(false);
+  const shown = showsAll ? evidence : evidence.slice(0, DAYS_SHOWN);
+  const frame = useTableFrame(shown);
   const columns: DataColumn<FindingView["evidence"][number]>[] = [
     {
       id: "wrong",
@@ -269,7 +390,7 @@ function Evidence({ finding }: { finding: FindingView }) {
       <DataTable
         caption={i18n.t("Days that show it, latest first")}
         columns={columns}
-        rows={evidence}
+        rows={shown}
         rowKey={({ resultId }) => resultId}
         isTwoLine
         empty={
@@ -286,7 +407,14 @@ function Evidence({ finding }: { finding: FindingView }) {
           </Empty>
         }
       />
-      {finding.daysCount > evidence.length && evidence.length > 0 && (
+      {!showsAll && evidence.length > DAYS_SHOWN && (
+        <p className="table-foot no-print">
+          <TextButton onClick={() => setShowsAll(true)}>
+            {i18n.t("Show all {count} days", { count: evidence.length })}
+          </TextButton>
+        </p>
+      )}
+      {showsAll && finding.daysCount > evidence.length && evidence.length > 0 && (
         <p className="table-foot">
           {i18n.t("The latest {count} of {all} days are listed.", {
             count: evidence.length,
@@ -310,6 +438,10 @@ function stepWords(
       return i18n.t("Marked done");
     case "cannot":
       return i18n.t("Can’t, because");
+    case "handed-over":
+      return i18n.t("Handed over");
+    case "escalated":
+      return i18n.t("Overdue: went up");
     case "evidence-gone":
       return isOfFit
         ? i18n.t("The fit test that showed it was corrected or struck out")
@@ -348,12 +480,18 @@ function Steps({ finding }: { finding: FindingView }) {
             <span className="by">
               {step.authorName
                 ? i18n.t("by {name}", { name: step.authorName })
-                : step.kind === "state" || step.kind === "rules-changed"
+                : step.kind === "state" ||
+                    step.kind === "rules-changed" ||
+                    step.kind === "escalated"
                   ? i18n.t("by the program")
                   : ""}
             </span>
             {step.text && step.kind !== "evidence-gone" && step.kind !== "rules-changed" && (
-              <span className="said block">{ownReasonWords(i18n, step.text) ?? step.text}</span>
+              <span className="said block">
+                {step.kind === "handed-over" || step.kind === "escalated"
+                  ? i18n.t("to {name}", { name: step.text })
+                  : (ownReasonWords(i18n, step.text) ?? step.text)}
+              </span>
             )}
           </span>
         </li>
@@ -379,6 +517,8 @@ function ownReasonWords(
       return i18n.t("the instrument was calibrated");
     case "refitted":
       return i18n.t("it was fitted anew");
+    case "no-longer-worn":
+      return i18n.t("The protector is worn no longer.");
     case "other-issued":
       return i18n.t("another that fits was handed out");
     case "fit-tested":
@@ -428,13 +568,48 @@ function untoldWords(
   }
 }
 
-function Margin({ finding }: { finding: FindingView }) {
+/** Who was told of it by mail, and whom it went up to. */
+function Told({ finding }: { finding: FindingView }) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const user = useUser();
   const [look, setLook] = useState<{ id: string; recipientName: string } | null>(null);
-  const { todayAt } = useSiteChoice();
   const timeZone = user.sites.find(({ id }) => id === finding.siteId)?.timeZone ?? "UTC";
+  return (
+    <div className="told-list">
+      {finding.untold && <p>{untoldWords(i18n, finding.untold)}</p>}
+      {finding.told.map((told) => (
+        <p key={told.noticeId}>
+          <b className="label-ink">{told.name}</b> {toldWord(i18n, told.state)}
+          {told.at && ` ${formatInstant(told.at, timeZone, locale)}`}.{" "}
+          <TextButton onClick={() => setLook({ id: told.noticeId, recipientName: told.name })}>
+            {i18n.t("Look")}
+          </TextButton>
+        </p>
+      ))}
+      {finding.wentUp && (
+        <p>
+          {i18n.t("Overdue, it went up to {name} on {date}.", {
+            name: finding.wentUp.name,
+            date: formatDate(finding.wentUp.on, locale),
+          })}
+        </p>
+      )}
+      {look && (
+        <LookAtNotices
+          notices={[look]}
+          onClose={() => setLook(null)}
+          actions={<Button onClick={() => setLook(null)}>{i18n.t("Close the letter")}</Button>}
+        />
+      )}
+    </div>
+  );
+}
+
+function Margin({ finding }: { finding: FindingView }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const { todayAt } = useSiteChoice();
   return (
     <>
       <Basis finding={finding} />
@@ -476,25 +651,6 @@ function Margin({ finding }: { finding: FindingView }) {
           </p>
         )}
       </MarginNote>
-      <MarginNote title={i18n.t("Who is told")}>
-        {finding.untold && <p>{untoldWords(i18n, finding.untold)}</p>}
-        {finding.told.map((told) => (
-          <p key={told.noticeId}>
-            <b className="label-ink">{told.name}</b> {toldWord(i18n, told.state)}
-            {told.at && ` ${formatInstant(told.at, timeZone, locale)}`}.{" "}
-            <TextButton onClick={() => setLook({ id: told.noticeId, recipientName: told.name })}>
-              {i18n.t("Look")}
-            </TextButton>
-          </p>
-        ))}
-      </MarginNote>
-      {look && (
-        <LookAtNotices
-          notices={[look]}
-          onClose={() => setLook(null)}
-          actions={<Button onClick={() => setLook(null)}>{i18n.t("Close the letter")}</Button>}
-        />
-      )}
     </>
   );
 }

@@ -5,10 +5,12 @@ import { findingWord } from "../../shared/findings/words";
 import { FINDING_KINDS, FindingFilter, FindingKind } from "../../shared/schemas/finding";
 import { Empty } from "../components/empty";
 import { FilterRow, FilterSelect } from "../components/filter-row";
+import { TextLink } from "../components/link";
 import { Folio, PageBody, PageHead } from "../components/page";
 import { FindingsTable } from "../features/findings/findings-table";
 import { findingQueries } from "../features/findings/queries";
 import { useUser } from "../features/session/session";
+import { paths } from "../paths";
 import { useSiteChoice } from "./site-choice";
 import "../styles/findings.css";
 
@@ -46,6 +48,7 @@ export function Component() {
           lead={i18n.t(
             "What the program noticed and a person must act on. Overdue ones stand first, then the soonest due; of those due on one day the worst at the top.",
           )}
+          actions={<TextLink to={paths.letters}>{i18n.t("Letters of results")}</TextLink>}
         />
         <FilterRow label={i18n.t("Narrow the findings")}>
           <FilterSelect

@@ -25,6 +25,7 @@ import { useLocale } from "../lib/i18n";
 import { references } from "../lib/references";
 import { paths } from "../paths";
 import { ProtectorWays } from "./protector-frame";
+import "../styles/candidates.css";
 import "../styles/findings.css";
 import "../styles/fits.css";
 import "../styles/worker.css";
@@ -97,6 +98,7 @@ function AtDesk({
   const { i18n } = useLingui();
   const user = useUser();
   const { worker, can } = desk;
+  const navigate = useNavigate();
   const timeZone = user.sites.find(({ id }) => id === worker.siteId)?.timeZone ?? "UTC";
   const today = localDate(new Date(), timeZone);
   const form = useRef<FitFormHandle>(null);
@@ -168,6 +170,40 @@ function AtDesk({
             pickLabel={(protector) => i18n.t("Try {protector}", { protector })}
             onPick={({ modelId }) => form.current?.choose(modelId)}
           />
+          {desk.pairs.length > 0 && (
+            <>
+              <h3 className="desk-pairs">
+                {i18n.t("Each of them leaves too little: two together")}
+              </h3>
+              <CandidatesTable
+                caption={i18n.t("Two together, in the order in which they suit this noise")}
+                inHead={i18n.t("A plug under a muff")}
+                candidates={desk.pairs}
+                chosen=""
+                hasOwnFit={false}
+                pickLabel={
+                  can.issue
+                    ? (pair) => i18n.t("Assign {protector}", { protector: pair })
+                    : undefined
+                }
+                onPick={({ modelId, outerModelId }) =>
+                  void navigate(
+                    paths.assign(worker.id, {
+                      modelIds: outerModelId ? [modelId, outerModelId] : [modelId],
+                      taskIds: [],
+                    }),
+                  )
+                }
+              />
+              {can.issue && (
+                <p className="beneath">
+                  {i18n.t(
+                    "Two are assigned together on the worker’s page; each is tried and handed out here by itself.",
+                  )}
+                </p>
+              )}
+            </>
+          )}
         </Section>
       </div>
       {toIssue && can.issue && (
@@ -219,7 +255,8 @@ function AtDesk({
           actions={
             can.issue
               ? (fit) =>
-                  !fit.isVoid && (
+                  !fit.isVoid &&
+                  fit.parDb !== null && (
                     <TextButton
                       aria-label={i18n.t("Issue {protector}", { protector: fit.modelName })}
                       onClick={() => setToIssue({ modelId: fit.modelId, size: fit.size, fit })}

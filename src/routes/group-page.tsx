@@ -61,12 +61,17 @@ export function Component() {
           })}
           actions={
             choice.isOfficer && (
-              <ButtonLink
-                kind="primary"
-                to={`${paths.newSurvey}?site=${group.siteId}&job=${group.jobId}`}
-              >
-                {i18n.t("Plan a survey")}
-              </ButtonLink>
+              <>
+                <ButtonLink to={paths.tryChangesFor("job", group.jobId)}>
+                  {i18n.t("Try changes")}
+                </ButtonLink>{" "}
+                <ButtonLink
+                  kind="primary"
+                  to={`${paths.newSurvey}?site=${group.siteId}&job=${group.jobId}`}
+                >
+                  {i18n.t("Plan a survey")}
+                </ButtonLink>
+              </>
             )
           }
         />

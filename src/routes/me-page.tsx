@@ -12,6 +12,7 @@ import { ownQueries } from "../features/me/queries";
 import { ReportProblem } from "../features/me/report-problem";
 import { whatToDo } from "../features/me/what-to-do";
 import { useUser } from "../features/session/session";
+import { WorkerTrainings } from "../features/training/worker-training";
 import { useLocale } from "../lib/i18n";
 import { usePageTitle } from "../lib/page-title";
 import "../styles/me.css";
@@ -110,6 +111,9 @@ function OwnPage({ workerId }: { workerId: string }) {
               <MyHistory days={days.data ?? []} assignments={worker.data?.assignments ?? []} />,
             )}
           </Suspense>
+        </Section>
+        <Section title={i18n.t("My training")} id="my-training">
+          <WorkerTrainings workerId={workerId} today={today} />
         </Section>
         <div className="me-report">
           {worker.data?.can.report && <ReportProblem workerId={workerId} />}

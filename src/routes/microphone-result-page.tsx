@@ -5,7 +5,10 @@ import { useNavigate, useParams } from "react-router-dom";
 import { formatDate, formatInstant } from "../../shared/format/date";
 import { formatNumber } from "../../shared/format/number";
 import { withinSentence } from "../../shared/format/words";
-import type { MicrophoneCheckView } from "../../shared/schemas/microphone-check";
+import {
+  isKeepable as canBeKept,
+  type MicrophoneCheckView,
+} from "../../shared/schemas/microphone-check";
 import { localDate } from "../../shared/time/zone";
 import { Button, ButtonLink } from "../components/button";
 import { Failed } from "../components/failed";
@@ -39,7 +42,11 @@ export function Component() {
   const [isKeeping, setKeeping] = useState(false);
   const view = found.data;
   const isKeepable =
-    view?.can.change && view.state === "analysed" && view.analysis?.parDb != null && !isKeeping;
+    view?.can.change &&
+    view.state === "analysed" &&
+    view.analysis !== null &&
+    canBeKept(view.analysis) &&
+    !isKeeping;
   return (
     <>
       <PageBody margin={view && <Facts view={view} />}>
@@ -163,7 +170,8 @@ function Keep({ view, onLeave }: { view: MicrophoneCheckView; onLeave: () => voi
   const locale = useLocale();
   const navigate = useNavigate();
   const user = useUser();
-  const { workerId, modelId, siteId, ear } = view;
+  const { workerId, modelId, siteId, ear, analysis } = view;
+  const isRated = analysis !== null && analysis.parDb !== null;
   const model = useQuery(protectorQueries.one(modelId));
   const desk = useQuery(fitQueries.desk(workerId));
   const tests = useInfiniteQuery(fitQueries.tests({ workerId, modelId }));
@@ -175,9 +183,11 @@ function Keep({ view, onLeave }: { view: MicrophoneCheckView; onLeave: () => voi
   const others = tests.data.pages
     .flatMap(({ rows }) => rows)
     .filter(
-      ({ isVoid, method, facts }) =>
+      ({ isVoid, method, facts, parDb }) =>
         !isVoid &&
         method === "two-microphones" &&
+        (parDb !== null) === isRated &&
+        (facts.bands?.[ear] ?? null) === null &&
         (ear === "left" ? facts.leftDb : facts.rightDb).length === 0,
     )
     .map(({ id, testedOn }) => ({
@@ -193,6 +203,7 @@ function Keep({ view, onLeave }: { view: MicrophoneCheckView; onLeave: () => voi
         sizes={model.data.data.sizes}
         needDb={desk.data.need.needDb}
         others={others}
+        isRated={isRated}
         onKept={({ workerId: id }) => {
           onLeave();
           void navigate(paths.microphoneResult(id, view.id), { replace: true });

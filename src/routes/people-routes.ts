@@ -14,6 +14,7 @@ export const peopleRoutes: PageRoute[] = [
   },
   { path: paths.yearFile, lazy: () => import("./year-file-page"), roles: ["auditor", "officer"] },
   { path: paths.trail, lazy: () => import("./trail-page"), roles: ["auditor", "administrator"] },
+  { path: paths.trailCheck, lazy: () => import("./trail-check-page"), roles: ["auditor"] },
   { path: paths.people, lazy: () => import("./people-page"), roles: ["administrator"] },
   { path: paths.person(":id"), lazy: () => import("./person-page"), roles: ["administrator"] },
   { path: paths.sites, lazy: () => import("./sites-page"), roles: ["administrator"] },

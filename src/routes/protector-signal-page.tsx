@@ -6,6 +6,7 @@ import { A_WEIGHTING_DB, weightedSumDb } from "../../shared/acoustics/protection
 import { HEARING_THRESHOLD_DB } from "../../shared/acoustics/protection/warning-signal";
 import { OCTAVE_BANDS_HZ } from "../../shared/acoustics/types";
 import { formatLevel } from "../../shared/format/level";
+import { withoutStop } from "../../shared/format/words";
 import { BandPicture } from "../components/band-picture";
 import { Button } from "../components/button";
 import { DataTable } from "../components/data-table";
@@ -61,7 +62,7 @@ export function Component() {
           way={way}
           title={signal.name}
           lead={[
-            signal.meaning === "" ? null : signal.meaning,
+            signal.meaning === "" ? null : `${withoutStop(signal.meaning)}.`,
             `${signal.siteName}, ${signal.areaName ?? i18n.t("the whole site")}.`,
             signal.isArchived ? i18n.t("No longer in use.") : null,
           ]

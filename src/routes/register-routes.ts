@@ -39,6 +39,9 @@ export const registerRoutes: PageRoute[] = [
   { path: paths.protector(":id"), lazy: () => import("./protector-page") },
   { path: paths.tasks, lazy: () => import("./tasks-page") },
   { path: paths.task(":id"), lazy: () => import("./task-page") },
+  { path: paths.plans, lazy: () => import("./plans-page"), roles: ["officer", "auditor"] },
+  { path: paths.tryChanges, lazy: () => import("./try-changes-page"), roles: ["officer"] },
+  { path: paths.plan(":id"), lazy: () => import("./plan-page"), roles: ["officer", "auditor"] },
   { path: paths.rules, lazy: () => import("./rules-page"), roles: ["officer", "auditor"] },
   { path: paths.site(":id"), lazy: () => import("./site-rules-page") },
   { path: paths.areas, lazy: () => import("./areas-page") },
@@ -46,5 +49,6 @@ export const registerRoutes: PageRoute[] = [
   { path: paths.jobs, lazy: () => import("./jobs-page") },
   { path: paths.crews, lazy: () => import("./crews-page") },
   { path: paths.crew(":id"), lazy: () => import("./crew-page") },
+  { path: paths.roster, lazy: () => import("./import-roster-page"), roles: ["officer"] },
   { path: paths.imports, lazy: () => import("./import-page"), roles: ["officer"] },
 ];

@@ -4,6 +4,7 @@ import { lazy, Suspense } from "react";
 import { useParams } from "react-router-dom";
 import { formatDate } from "../../shared/format/date";
 import { formatLevel, formatLimit } from "../../shared/format/level";
+import { formatNumber } from "../../shared/format/number";
 import { isolate } from "../../shared/i18n/isolate";
 import { ruleSetVersion } from "../../shared/rule-sets";
 import { IsoDate } from "../../shared/schemas/common";
@@ -170,7 +171,26 @@ function endOf(start: string, lengthMin: number): string {
   return `${String(Math.floor(min / 60)).padStart(2, "0")}:${String(min % 60).padStart(2, "0")}`;
 }
 
-function ResultStrip({ result: { figures } }: { result: ResultView }) {
+/** The shift's own word counts; whoever reads it is told where rounds saw something else. */
+function WearingSeen({ seen }: { seen: ResultView["wearingSeen"] }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  return seen.map(({ taskId, taskName, statedPct, wornCount, seenCount }) => (
+    <p key={taskId} className="working-strip-words">
+      {i18n.t(
+        "{task}: the shift states that it was worn {stated} % of the time; rounds saw it worn in {worn} of {seen} looks. What the shift states counts.",
+        {
+          task: taskName,
+          stated: formatNumber(statedPct, 0, locale),
+          worn: wornCount,
+          seen: seenCount,
+        },
+      )}
+    </p>
+  ));
+}
+
+function ResultStrip({ result: { figures, wearingSeen } }: { result: ResultView }) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const isPhone = useIsPhone();
@@ -223,6 +243,7 @@ function ResultStrip({ result: { figures } }: { result: ResultView }) {
           <span>{i18n.t("● {level} as worked", { level: level(figures.atEarAsWorkedDb) })}</span>
         )}
       </p>
+      <WearingSeen seen={wearingSeen} />
     </div>
   );
 }

@@ -28,6 +28,7 @@ function useNavigation(user: SessionUser): NavItem[] {
     (officer || auditor) && { to: paths.toMeasure, label: i18n.t("Measuring") },
     (officer || auditor) && { to: paths.protectors, label: i18n.t("Protectors") },
     auditor && { to: paths.trail, label: i18n.t("Trail") },
+    (officer || auditor) && { to: paths.plans, label: i18n.t("Plans") },
     (officer || auditor) && { to: paths.rules, label: i18n.t("Rules") },
     hasRole(user, "administrator") && { to: paths.people, label: i18n.t("People") },
     hasRole(user, "administrator") && { to: paths.sites, label: i18n.t("Sites") },

@@ -8,6 +8,7 @@ import { RecomputeProgress } from "../components/change-preview";
 import { Failed } from "../components/failed";
 import { TextLink } from "../components/link";
 import { Folio, MarginNote, PageBody, PageHead, Section } from "../components/page";
+import { Escalation } from "../features/rules/escalation";
 import { FitPolicy } from "../features/rules/fit-policy";
 import { ruleQueries } from "../features/rules/queries";
 import { RuleSetTable } from "../features/rules/rule-set-table";
@@ -117,6 +118,11 @@ export function Component() {
         <Section title={i18n.t("Fit tests")} id="fit-policy">
           <FitPolicy key={site.revision} site={site} />
         </Section>
+        {mayChange && (
+          <Section title={i18n.t("Overdue findings")} id="escalation">
+            <Escalation key={site.revision} siteId={site.id} />
+          </Section>
+        )}
         {governing && (
           <Section title={i18n._(governing.title)} id="governing">
             <RuleSetTable ruleSet={governing} />

@@ -4,12 +4,13 @@ import { useMemo } from "react";
 import { useSearchParams } from "react-router-dom";
 import { formatInstant } from "../../shared/format/date";
 import type { AuditEventView } from "../../shared/schemas/audit-event";
+import { ButtonLink } from "../components/button";
 import { type DataColumn, DataTable } from "../components/data-table";
 import { Empty } from "../components/empty";
 import { FilterRow, FilterSelect } from "../components/filter-row";
 import { TextButton } from "../components/link";
 import { Folio, PageBody, PageHead } from "../components/page";
-import { useUser } from "../features/session/session";
+import { hasRole, useUser } from "../features/session/session";
 import { EventValues } from "../features/trail/event-values";
 import { trailQuery } from "../features/trail/queries";
 import {
@@ -21,6 +22,7 @@ import {
 import { type Names, nameText } from "../features/trail/value-text";
 import { useLocale } from "../lib/i18n";
 import { useIsPhone } from "../lib/use-is-phone";
+import { paths } from "../paths";
 import "../styles/findings.css";
 import "../styles/trail.css";
 
@@ -29,7 +31,8 @@ export function Component() {
   const { i18n } = useLingui();
   const locale = useLocale();
   const isPhone = useIsPhone();
-  const { sites } = useUser();
+  const user = useUser();
+  const { sites } = user;
   const [search, setSearch] = useSearchParams();
   const kind = search.get("about");
   const subjectKind = isSubjectKind(kind) ? kind : null;
@@ -146,6 +149,11 @@ export function Component() {
         <PageHead
           title={i18n.t("Trail")}
           lead={i18n.t("Who did what, and when. Nothing here is ever changed or taken out.")}
+          actions={
+            hasRole(user, "auditor") && (
+              <ButtonLink to={paths.trailCheck}>{i18n.t("Check the trail")}</ButtonLink>
+            )
+          }
         />
         <FilterRow label={i18n.t("Narrow the trail")}>
           <FilterSelect

@@ -294,7 +294,9 @@ function WaitingMargin({
     data.outgoing.length +
       data.troubled.length +
       data.toBeChecked.length +
-      data.calibrationsDue.length ===
+      data.calibrationsDue.length +
+      data.letters.toPrint +
+      data.letters.late ===
     0;
   return (
     <div ref={place} className="contents">
@@ -342,6 +344,24 @@ function WaitingMargin({
               </TextLink>
             </p>
           )}
+        </MarginNote>
+      )}
+      {data.letters.toPrint + data.letters.late > 0 && (
+        <MarginNote title={i18n.t("Letters of results")}>
+          <p>
+            <TextLink to={paths.letters}>
+              {i18n.t("{count, plural, one {# to print} other {# to print}}", {
+                count: data.letters.toPrint,
+              })}
+            </TextLink>
+            {data.letters.late > 0 && (
+              <b>
+                {i18n.t(", {count, plural, one {# late} other {# late}}", {
+                  count: data.letters.late,
+                })}
+              </b>
+            )}
+          </p>
         </MarginNote>
       )}
       {data.calibrationsDue.length > 0 && (

@@ -44,6 +44,8 @@ export function Component() {
   const [search, setSearch] = useSearchParams();
   const [store] = useState(() => createRoundDraftStore(localStorage, user.id));
   const [sent, setSent] = useState<WearingRoundView | null>(null);
+  const [isChoosing, setChoosing] = useState(false);
+  const [taskId, setTaskId] = useState<string | null>(null);
   const today = localDateOf(new Date().toISOString(), user.sites[0]?.timeZone ?? "UTC");
   const date = search.get("date") ?? today;
   const crews = useQuery(wearingQueries.crews(date));
@@ -54,10 +56,12 @@ export function Component() {
     ...wearingQueries.tally(crewId ?? "", date),
     enabled: crewId !== null && crew !== undefined,
   });
+  const shownTask = tally.data?.tasks.find(({ id }) => id === taskId);
   const isOfSeveralSites = new Set(crews.data?.map(({ siteId }) => siteId)).size > 1;
 
   function choose(next: { crew?: string; date?: string }) {
     setSent(null);
+    setTaskId(null);
     setSearch(
       (before) => {
         const params = new URLSearchParams(before);
@@ -120,39 +124,73 @@ export function Component() {
             lead={i18n.t("Tap once for every look. It is kept on this phone until it is sent.")}
           />
           <Waiting drafts={waiting} onChoose={(draft) => choose(whereOf(draft))} />
-          <div className="sample-form round-where">
-            <div className="field">
-              <label className="field-label" htmlFor="round-date">
-                {i18n.t("Date")}
-              </label>
-              <DateInput
-                id="round-date"
-                key={date}
-                value={date}
-                max={today}
-                onChoose={(chosen) => choose({ date: chosen })}
-              />
-            </div>
-            {crews.data && crews.data.length > 0 && (
+          <details
+            className="sample-more round-where"
+            open={isChoosing || crews.data?.length === 0}
+            onToggle={(event) => setChoosing(event.currentTarget.open)}
+          >
+            <summary>
+              <span>
+                {[crew && isolate(crew.name), dayWords(date), shownTask?.name]
+                  .filter(Boolean)
+                  .join(", ")}
+                <span className="beneath">{i18n.t("Another crew, date or task")}</span>
+              </span>
+            </summary>
+            <div className="sample-form">
               <div className="field">
-                <label className="field-label" htmlFor="round-crew">
-                  {i18n.t("Crew")}
+                <label className="field-label" htmlFor="round-date">
+                  {i18n.t("Date")}
                 </label>
-                <select
-                  id="round-crew"
-                  className="input"
-                  value={crewId ?? ""}
-                  onChange={(event) => choose({ crew: event.target.value })}
-                >
-                  {crews.data.map(({ id, name, siteName }) => (
-                    <option key={id} value={id}>
-                      {isOfSeveralSites ? `${name}, ${siteName}` : name}
-                    </option>
-                  ))}
-                </select>
+                <DateInput
+                  id="round-date"
+                  key={date}
+                  value={date}
+                  max={today}
+                  onChoose={(chosen) => choose({ date: chosen })}
+                />
               </div>
-            )}
-          </div>
+              {crews.data && crews.data.length > 0 && (
+                <div className="field">
+                  <label className="field-label" htmlFor="round-crew">
+                    {i18n.t("Crew")}
+                  </label>
+                  <select
+                    id="round-crew"
+                    className="input"
+                    value={crewId ?? ""}
+                    onChange={(event) => choose({ crew: event.target.value })}
+                  >
+                    {crews.data.map(({ id, name, siteName }) => (
+                      <option key={id} value={id}>
+                        {isOfSeveralSites ? `${name}, ${siteName}` : name}
+                      </option>
+                    ))}
+                  </select>
+                </div>
+              )}
+              {tally.data && tally.data.tasks.length > 1 && (
+                <div className="field">
+                  <label className="field-label" htmlFor="round-task">
+                    {i18n.t("Show")}
+                  </label>
+                  <select
+                    id="round-task"
+                    className="input"
+                    value={taskId ?? ""}
+                    onChange={(event) => setTaskId(event.target.value || null)}
+                  >
+                    <option value="">{i18n.t("All tasks in noise")}</option>
+                    {tally.data.tasks.map(({ id, name }) => (
+                      <option key={id} value={id}>
+                        {name}
+                      </option>
+                    ))}
+                  </select>
+                </div>
+              )}
+            </div>
+          </details>
           {crews.isError && !crews.data && (
             <Failed error={crews.error} onRetry={() => void crews.refetch()} />
           )}
@@ -169,6 +207,7 @@ export function Component() {
             <Round
               key={`${tally.data.crewId} ${tally.data.date}`}
               tally={tally.data}
+              taskId={shownTask?.id ?? null}
               store={store}
               onSent={(round) => {
                 setSent(round);
@@ -233,10 +272,13 @@ function TallyLoading() {
 /** One crew on one date. */
 function Round({
   tally,
+  taskId,
   store,
   onSent,
 }: {
   tally: WearingTally;
+  /** The only one to be shown; null: all in noise. */
+  taskId: string | null;
   store: RoundDraftStore;
   onSent: (round: WearingRoundView) => void;
 }) {
@@ -246,7 +288,6 @@ function Round({
   const [draft, setDraft] = useState(() => store.read(crewId, date) ?? empty);
   /** As it stands by now: taps may come while a sending is on its way. */
   const latest = useRef(draft);
-  const [taskId, setTaskId] = useState<string | null>(null);
   const [said, setSaid] = useState("");
   const [isDiscarding, setDiscarding] = useState(false);
   const [wantsTap, setWantsTap] = useState(false);
@@ -324,28 +365,6 @@ function Round({
     );
   return (
     <>
-      {tally.tasks.length > 1 && (
-        <div className="sample-form round-where">
-          <div className="field">
-            <label className="field-label" htmlFor="round-task">
-              {i18n.t("Show")}
-            </label>
-            <select
-              id="round-task"
-              className="input"
-              value={taskId ?? ""}
-              onChange={(event) => setTaskId(event.target.value || null)}
-            >
-              <option value="">{i18n.t("All tasks in noise")}</option>
-              {tally.tasks.map(({ id, name }) => (
-                <option key={id} value={id}>
-                  {name}
-                </option>
-              ))}
-            </select>
-          </div>
-        </div>
-      )}
       <TallyRows
         workers={workers}
         countOf={countOf}

@@ -40,6 +40,7 @@ import { fitQueries } from "../features/fits/queries";
 import { Refusals } from "../features/fits/refusals";
 import { OfficeLink } from "../features/session/office-link";
 import { hasRole, useUser } from "../features/session/session";
+import { WorkerTrainings } from "../features/training/worker-training";
 import { workerQueries } from "../features/workers/queries";
 import { SignInSlip } from "../features/workers/sign-in-slip";
 import { employerWords } from "../features/workers/workers-table";
@@ -149,6 +150,7 @@ function WorkerSheet({ worker }: { worker: WorkerView }) {
           <Protectors worker={worker} today={today} />
           <Fits worker={worker} today={today} isOfficer={isOfficer} />
           <OpenFindings worker={worker} today={today} />
+          <Training worker={worker} today={today} />
           <History worker={worker} />
         </div>
         {worker.can.issueCode && worker.leftOn === null && (
@@ -331,6 +333,9 @@ function Fits({
           <ButtonLink to={paths.fittingOf(worker.id)}>{i18n.t("Fit and issue")}</ButtonLink>{" "}
           <ButtonLink to={paths.microphoneCheck(worker.id)}>
             {i18n.t("Two-microphone check")}
+          </ButtonLink>{" "}
+          <ButtonLink to={paths.tryChangesFor("worker", worker.id)}>
+            {i18n.t("Try changes")}
           </ButtonLink>
         </p>
       )}
@@ -355,6 +360,15 @@ function Fits({
           <Refusals workerId={worker.id} today={today} />
         </>
       )}
+    </Section>
+  );
+}
+
+function Training({ worker, today }: { worker: WorkerView; today: string }) {
+  const { i18n } = useLingui();
+  return (
+    <Section title={i18n.t("Training")} id="training">
+      <WorkerTrainings workerId={worker.id} today={today} />
     </Section>
   );
 }

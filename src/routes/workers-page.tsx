@@ -55,11 +55,17 @@ export function Component() {
           title={i18n.t("Workers")}
           lead={i18n.t("Everyone on record, with the last day entered.")}
           actions={
-            hasRole(user, "officer") && (
-              <ButtonLink kind="primary" to={paths.newWorker}>
-                {i18n.t("New worker")}
-              </ButtonLink>
-            )
+            <>
+              {hasRole(user, "officer") && (
+                <>
+                  <ButtonLink kind="primary" to={paths.newWorker}>
+                    {i18n.t("New worker")}
+                  </ButtonLink>
+                  <ButtonLink to={paths.roster}>{i18n.t("Roster from a file")}</ButtonLink>
+                </>
+              )}
+              <ButtonLink to={paths.trainings}>{i18n.t("Training")}</ButtonLink>
+            </>
           }
         />
         <FilterRow label={i18n.t("Narrow the workers")}>

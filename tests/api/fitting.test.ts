@@ -225,6 +225,20 @@ describeEndpoint({
   }),
 });
 describeEndpoint({
+  route: "POST /sites/:id/fit-policy/preview",
+  as: "officer",
+  not: "administrator",
+  event: null,
+  status: 200,
+  bad: { body: { firstDays: 0 } },
+  badField: "firstDays",
+  call: async (site) => ({
+    method: "post",
+    path: `/sites/${site.id}/fit-policy/preview`,
+    body: { confidencePct: 90, everyMonths: 12, afterFailDays: 14 },
+  }),
+});
+describeEndpoint({
   route: "GET /sites/:id/fits",
   as: "auditor",
   not: "supervisor",
@@ -477,6 +491,23 @@ describe("findings of fits", () => {
   });
 });
 
+test("an assignment that is ended by hand closes what is open on its fit", async () => {
+  const desk = await openDesk();
+  const { worker, site, muff } = desk;
+  const assignment = await buildAssignment({
+    worker,
+    inner: { ...muff, organizationId: site.organizationId, name: "" },
+    fromDate: daysFromToday(-30),
+  });
+  await record(desk, fitBody(muff.id, { needDb: 30 }));
+  expect(await findingsOf(worker, "fit-failed")).toMatchObject([{ state: "new" }]);
+  const ended = await desk.client.patch(`/assignments/${assignment.id}`, { toDate: today }, 1);
+  expect(ended.status).toBeLessThan(300);
+  expect(await findingsOf(worker, "fit-failed")).toMatchObject([
+    { state: "closed", closing_reason: "no-longer-worn" },
+  ]);
+});
+
 describe("fits that are due", () => {
   const look = ({ site }: Desk) =>
     inTransaction({ organizationId: site.organizationId }, async () => {
@@ -539,7 +570,25 @@ describe("fits that are due", () => {
   test("a device never tested on its wearer; not one that is worn no longer", async () => {
     const desk = await openDesk();
     await wears(desk, desk.plug, daysFromToday(-20));
-    await policy(desk, { everyMonths: 24, afterFailDays: 14 });
+    const asked = { confidencePct: 84, everyMonths: 24, afterFailDays: 14, firstDays: 60 };
+    const preview = await desk.client.post(`/sites/${desk.site.id}/fit-policy/preview`, asked);
+    expect(preview.body).toMatchObject({ dueNowCount: 0, untestedCount: 1 });
+    expect(preview.body.untestedFrom > today).toBe(true);
+    expect(preview.body.untestedTo <= daysFromToday(60)).toBe(true);
+    // Setting the policy makes nobody's test due at once.
+    await policy(desk, asked);
+    expect(await findingsOf(desk.worker, "fit-due")).toEqual([]);
+    await select("UPDATE sites SET fit_asked_from = current_date - 61 WHERE id = $1", [
+      desk.site.id,
+    ]);
+    await look(desk);
+    // Given since the site asks: sixty days from that day.
+    expect(await findingsOf(desk.worker, "fit-due")).toEqual([]);
+    await select("UPDATE assignments SET valid = daterange($2::date, NULL) WHERE worker_id = $1", [
+      desk.worker.id,
+      daysFromToday(-100),
+    ]);
+    await look(desk);
     expect(await findingsOf(desk.worker, "fit-due")).toMatchObject([{ state: "new" }]);
     await select(
       "UPDATE assignments SET valid = daterange(lower(valid), current_date) WHERE worker_id = $1",

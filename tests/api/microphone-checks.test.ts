@@ -5,6 +5,7 @@ import { lookAfter } from "../../server/jobs/look-after";
 import { fileStore } from "../../server/lib/file-store";
 import {
   buildDay,
+  buildFitTest,
   buildShift,
   buildSite,
   buildTask,
@@ -318,6 +319,11 @@ describe("recordings are analysed and their audio goes", { timeout: 120_000 }, (
       [pairFile([outside.map((value) => Math.max(-1, Math.min(1, 40 * value))), inside])],
       "channel-clipped",
     ],
+    [
+      "clipped before the converter, below full scale",
+      [pairFile([outside.map((value) => Math.max(-0.02, Math.min(0.02, value))), inside])],
+      "channel-clipped",
+    ],
     ["compressed", [pairFile([outside, inside], { formatTag: 0x55 })], "recording-compressed"],
   ])("%s is refused by name, and the audio goes", async (_, files, code) => {
     const { site, worker, model, client } = await buildPlace();
@@ -577,6 +583,70 @@ describe("a check is kept as a fit test", () => {
     const more = (await client.post(path, { ...typedInput(model, 70), ear: "right" })).body;
     const refused = await client.post(`/microphone-checks/${more.id}/keep`, join);
     expect(refused.body.issues).toMatchObject([{ code: "not-the-other-ear" }]);
+  });
+
+  test("a check of the active part without calibration is kept as what it is: relative, and no rating", async () => {
+    const { site, worker, client } = await buildPlace();
+    const model = await buildActiveMuff(site);
+    await buildFitTest({ worker, model, parDb: 21, testedOn: daysFromToday(-30) });
+    const part = (active: "off" | "on", file: number) => ({
+      active,
+      outside: { file, channel: 1 },
+      inside: { file, channel: 2 },
+    });
+    // A microphone inside that is 30 dB more sensitive: louder than the one outside in every band.
+    const hot = (sound: Float32Array) => sound.map((value) => 31.6 * value);
+    const check = checkInput(model, {
+      parts: [part("off", 0), part("on", 1)],
+      calibration: { kind: "none" },
+    });
+    const checkedEar = async (ear: "left" | "right", strength?: number) => {
+      const sent = await sendCheck(client, worker, { ...check, ear }, [
+        pairFile([outside, hot(inside)]),
+        pairFile([outside, hot(cancelled(inside, 6, strength))]),
+      ]);
+      await analyseCheck(site, sent.body.id);
+      return (await client.get(`/microphone-checks/${sent.body.id}`)).body;
+    };
+    const left = await checkedEar("left");
+    expect(left.analysis).toMatchObject({
+      parDb: null,
+      active: { hasPassed: true },
+      ear: { isRelative: true },
+    });
+    const keep = (id: string, more: object = {}) =>
+      client.post(`/microphone-checks/${id}/keep`, { testedOn, needDb: 20, ...more });
+    const kept = await keep(left.id);
+    expect(kept.body).toMatchObject({ state: "kept" });
+    const fits = async () => (await client.get(`/fit-tests?workerId=${worker.id}`)).body.rows;
+    const [found, rated] = await fits();
+    expect(found).toMatchObject({
+      id: kept.body.fitTestId,
+      parDb: null,
+      hasPassed: null,
+      needDb: null,
+      activePassed: true,
+      facts: { leftDb: [], rightDb: [], bands: { left: { isRelative: true }, right: null } },
+    });
+    // The rating that counts, and when it is due, stay those of the earlier test.
+    expect(rated).toMatchObject({ parDb: 21 });
+    // It joins no test that has a rating, and takes the other ear's check of its own kind.
+    const path = `/workers/${worker.id}/microphone-checks/typed`;
+    const typed = (await client.post(path, { ...typedInput(model), ear: "right" })).body;
+    const joinFitTestId = kept.body.fitTestId;
+    expect((await keep(typed.id, { joinFitTestId })).body.issues).toMatchObject([
+      { path: ["joinFitTestId"], code: "not-the-other-ear" },
+    ]);
+    const right = await checkedEar("right", 0.5);
+    expect((await keep(right.id, { joinFitTestId })).status).toBe(201);
+    expect((await fits())[0]).toMatchObject({ revision: 2, parDb: null, activePassed: false });
+    const struck = await client.send({
+      method: "post",
+      path: `/fit-tests/${joinFitTestId}/void`,
+      body: { reason: "wrong worker" },
+      revision: 2,
+    });
+    expect([struck.status, struck.body.isVoid]).toEqual([201, true]);
   });
 
   test("a passed active check goes with it; of two ears both have to pass", async () => {

@@ -2,8 +2,9 @@ import { createHash } from "node:crypto";
 import pg from "pg";
 import { describe, expect, test } from "vitest";
 import type { z } from "zod";
-import { canonicalJson, chainHash, sealEvents } from "../../server/lib/audit";
+import { sealTrail } from "../../server/lib/audit";
 import { execute, inTransaction, rows } from "../../server/lib/db";
+import { checkSeals } from "../../server/queries/trail-check";
 import type { AuditEventPage } from "../../shared/schemas/audit-event";
 import {
   buildArea,
@@ -104,47 +105,50 @@ describe("the trail", () => {
     const client = await signInAs(officer);
     for (const name of ["Test cell 1", "Test cell 2"])
       expect((await client.post("/areas", { siteId: site.id, name })).status).toBe(201);
-    const seal = () => inTransaction({ organizationId }, () => sealEvents(organizationId));
-    expect(await seal()).toBe(2);
+    const seal = () => inTransaction({ organizationId }, () => sealTrail(organizationId));
+    const sealedEvents = async () =>
+      (
+        await select(
+          "SELECT 1 FROM audit_seals WHERE organization_id = $1 AND event_id IS NOT NULL",
+          [organizationId],
+        )
+      ).length;
+    expect(await seal()).toBeGreaterThan(2);
+    expect(await sealedEvents()).toBe(2);
     await buildArea({ site });
     expect((await client.post("/areas", { siteId: site.id, name: "Test cell 3" })).status).toBe(
       201,
     );
-    expect(await seal()).toBe(1);
+    // Two entries on rows of areas, and an event.
+    expect(await seal()).toBe(3);
+    expect(await sealedEvents()).toBe(3);
     expect(await seal()).toBe(0);
 
-    const events = await select<{
-      id: string;
-      at: string;
-      actorId: string;
-      action: string;
-      subjectKind: string;
-      subjectId: string;
-      digest: string;
-      hash: Buffer;
-      salt: Buffer;
-      recorded: unknown;
-    }>(
-      `SELECT e.id::text AS id, to_char(e.at AT TIME ZONE 'UTC', 'YYYY-MM-DD"T"HH24:MI:SS.US') AS at, e.actor_id AS "actorId", e.action, e.subject_kind AS "subjectKind",
-         e.subject_id AS "subjectId", encode(e.values_digest, 'hex') AS digest, s.hash, v.salt, v.recorded
-       FROM audit_events e JOIN audit_seals s ON s.event_id = e.id JOIN audit_values v ON v.event_id = e.id WHERE e.organization_id = $1 ORDER BY s.number`,
+    // The chain by hand: SHA-256 over the seal before and the lines of what it covers.
+    const sealed = await select<{ covers: string; hash: Buffer }>(
+      `SELECT s.hash, CASE WHEN e.id IS NOT NULL THEN concat_ws(chr(10), e.id, to_char(e.at AT TIME ZONE 'UTC', 'YYYY-MM-DD"T"HH24:MI:SS.US'), e.actor_id,
+           e.action, e.subject_kind, e.subject_id, encode(e.values_digest, 'hex'))
+         ELSE concat_ws(chr(10), 'rows', n.id, to_char(n.at AT TIME ZONE 'UTC', 'YYYY-MM-DD"T"HH24:MI:SS.US'), n.role_name, n.table_name, n.operation,
+           encode(sha256(convert_to(concat_ws(chr(10), array_to_string(p.columns, chr(10)), array_to_string(p.types, chr(10)), array_to_string(n.keys, chr(10)),
+             (SELECT string_agg(encode(d, 'hex'), chr(10)) FROM unnest(n.digests) d)), 'UTF8')), 'hex')) END AS covers
+       FROM audit_seals s LEFT JOIN audit_events e ON e.id = s.event_id
+       LEFT JOIN trail_entries n ON n.id = s.entry_id LEFT JOIN trail_shapes p ON p.id = n.shape_id WHERE s.organization_id = $1 ORDER BY s.number`,
       [organizationId],
     );
-    expect(events.map(({ actorId }) => actorId)).toEqual([officer.id, officer.id, officer.id]);
-    let hash = Buffer.alloc(32);
-    for (const event of events) {
-      hash = chainHash(hash, event) as Buffer<ArrayBuffer>;
-      expect(event.hash.equals(hash)).toBe(true);
-      // SHA-256 over salt and canonical JSON, taken again here by hand.
-      expect(
-        createHash("sha256").update(event.salt).update(canonicalJson(event.recorded)).digest("hex"),
-      ).toBe(event.digest);
+    let hash: Buffer = Buffer.alloc(32);
+    for (const { covers, hash: stored } of sealed) {
+      hash = createHash("sha256").update(hash).update(covers).digest();
+      expect(stored.equals(hash)).toBe(true);
     }
+    const checked = await inTransaction({ organizationId, readOnly: true }, () =>
+      checkSeals(organizationId, 0),
+    );
+    expect(checked).toEqual({ checked: sealed.length, next: null, erased: 0, faults: [] });
   });
 
   test("an event of a transaction that is still open is left for the next time", async () => {
     const { id: organizationId } = await buildOrganization();
-    const seal = () => inTransaction({ organizationId }, () => sealEvents(organizationId));
+    const seal = () => inTransaction({ organizationId }, () => sealTrail(organizationId));
     const insert = () =>
       execute(
         "INSERT INTO audit_events (organization_id, action, subject_kind, values_digest) VALUES ($1, 'test', 'test', '\\x00')",
@@ -158,7 +162,8 @@ describe("the trail", () => {
       });
       expect(other).toBe(0);
     });
-    expect(await seal()).toBe(1);
+    // The event, and the organization's own row.
+    expect(await seal()).toBe(2);
   });
 });
 

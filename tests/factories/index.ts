@@ -1,5 +1,6 @@
 export { buildDay } from "./day";
 export { daysFromToday } from "./days";
+export { buildFile, buildFinding } from "./finding";
 export { buildFitTest, buildIssue } from "./fit";
 export { insert, owner, select } from "./insert";
 export { buildInstrument } from "./instrument";

@@ -10,7 +10,7 @@ import {
   type Wearer,
 } from "../../shared/acoustics/protection/choose-protector";
 import type { ActivePart, OctaveBandValues, ProtectorData } from "../../shared/acoustics/types";
-import { RULE_SETS } from "../../shared/rule-sets";
+import { besideScaleDb, RULE_SETS } from "../../shared/rule-sets";
 import { buildLevel, buildProtector, ruleSet, STEADY } from "./build-day";
 
 const EU = ruleSet("eu-2003-10-ec").protection;
@@ -91,7 +91,7 @@ describe("the order, one comparison after the other", () => {
     });
   });
 
-  test("margin in whole decibels; where all are too much the least of it", () => {
+  test("margin, not rounded; where all are too much the least of it", () => {
     expect(order([offer("a", { snrDb: 21 }), offer("b", { snrDb: 24 })], wearer(100))).toEqual([
       ["b", "first"],
       ["a", "margin"],
@@ -101,8 +101,8 @@ describe("the order, one comparison after the other", () => {
       ["a", "margin"],
     ]);
     expect(order([offer("a", { snrDb: 22.2 }), offer("b", { snrDb: 22.7 })], wearer(100))).toEqual([
-      ["a", "first"],
-      ["b", "name"],
+      ["b", "first"],
+      ["a", "margin"],
     ]);
   });
 
@@ -124,6 +124,38 @@ describe("the order, one comparison after the other", () => {
     expect(found[0]!.marginDb).toBeCloseTo(5.72, 9);
     expect(found[1]!.marginDb).toBeCloseTo(1.88, 9);
     expect(found[1]!.decidedBy).toBe("margin");
+  });
+
+  test("an own fit is compared with labels for the same share of users", () => {
+    const flat = (db: number): OctaveBandValues => [db, db, db, db, db, db, db, db];
+    const noises = [
+      { name: "Mill", level: buildLevel(100, { octaveBandsDb: flat(90) }), durationMin: 480 },
+    ];
+    const banded = offer("banded", { bands: { meanDb: flat(24), sdDb: flat(2) } });
+    // A mean of 26 with u = 4 is 22 for 84 %, and 26 − 1.645 · 4 = 19.42 for 95 %; the label is 20.72 for 95 %.
+    const own = { parDb: 22, atRuleShareDb: 22, atLowerShareDb: 19.42 };
+    const fits = new Map([["own", { ...own, hasPassed: true, testedOn: "2026-01-05" }]]);
+    const inBands = new ProtectorChoice([banded, offer("own", { snrDb: 30 })], EU, ENERGY_LAW).for(
+      wearer(100, { noises, fits }),
+    );
+    expect(inBands.map(({ modelId, decidedBy }) => [modelId, decidedBy])).toEqual([
+      ["banded", "first"],
+      ["own", "margin"],
+    ]);
+    expect(inBands[1]!.marginDb).toBeCloseTo(85 - (100 - 19.42), 9);
+    expect(inBands[1]!.marginSharePct).toBe(95);
+    expect(inBands[1]!.lastFit).toEqual({ parDb: 22, hasPassed: true, testedOn: "2026-01-05" });
+
+    // Stated for 95 %: behind a single number, which is for 84 %, it is not put because of that.
+    const strict = { parDb: 20, atRuleShareDb: 23, atLowerShareDb: 20 };
+    const byNumber = new ProtectorChoice(
+      [offer("single", { snrDb: 22 }), offer("own", { snrDb: 30 })],
+      EU,
+      ENERGY_LAW,
+    ).for(wearer(100, { fits: new Map([["own", { ...strict, hasPassed: true, testedOn: "" }]]) }));
+    expect(byNumber.map(({ modelId }) => modelId)).toEqual(["own", "single"]);
+    expect(byNumber[0]!.marginDb).toBeCloseTo(8, 9);
+    expect(byNumber[0]!.marginSharePct).toBeNull();
   });
 
   test("own fit, then battery, stock and name", () => {
@@ -312,4 +344,41 @@ test("property: every level is the one that the day's engine has, for any data a
     ),
     { numRuns: 1000 },
   );
+});
+
+describe("a rule that has no word for too much: EN 458's stands beside it", () => {
+  // 95 dB for the shift; the US number less 7 comes off: 24 leaves 78, 31 leaves 71, 33 leaves 69 and 35 leaves 67. By
+  // EN 458 against the action value of 85 what is less than 70 is too much (memory).
+  const offers = [24, 31, 33, 35].map((usRatingDb) => offer(`r${usRatingDb}`, { usRatingDb }));
+  const noises = [{ name: "Mill", level: buildLevel(95), durationMin: 480 }];
+  const ranked = (these: Offer[], scaleDb: number | null) =>
+    new ProtectorChoice(these, US.protection, US_LAW, scaleDb)
+      .for({ ...wearer(95), noises })
+      .map(({ modelId, word, scaleWord, decidedBy }) => [modelId, word, scaleWord, decidedBy]);
+
+  test("among what is enough, what is too much by it comes after what is not, the least of it first", () => {
+    expect(besideScaleDb(US)).toBe(85);
+    expect(ranked(offers, besideScaleDb(US))).toEqual([
+      ["r31", "enough", "strong-side", "first"],
+      ["r24", "enough", "good", "margin"],
+      ["r33", "enough", "too-much", "overprotection"],
+      ["r35", "enough", "too-much", "margin"],
+    ]);
+  });
+
+  test("too little stays behind all of them", () => {
+    const weak = offer("r9", { usRatingDb: 9 });
+    expect(ranked([weak, ...offers.slice(2)], 85).at(-1)).toEqual([
+      "r9",
+      "too-little",
+      "too-little",
+      "adequacy",
+    ]);
+  });
+
+  test("a rule that has the scale, or no word at all, asks for none", () => {
+    for (const key of ["eu-2003-10-ec", "uk-2005", "niosh-rel"] as const)
+      expect(besideScaleDb(ruleSet(key))).toBeNull();
+    expect(ranked(offers, null)[0]).toEqual(["r35", "enough", null, "first"]);
+  });
 });

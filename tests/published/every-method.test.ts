@@ -35,10 +35,10 @@ test("100 dB(A) with LC − LA of 2 behind one muff, every method by hand (compu
     "octave-band98": 80,
     hml: 76,
     snr: 100 + 2 - 26,
-    // Off the C-weighted level where nothing is derated, else 7 dB less: (25 − 7)/2, and 25 · 0.75 − 7.
-    "us-single-numbernone": 77,
-    "us-single-numberhalf": 91,
-    "us-single-numberby-type": 88.25,
+    // All off the C-weighted level of 102, as the rule's own way is: 25, half of it, and 0.75 of it for a muff.
+    "us-single-numbernone": 102 - 25,
+    "us-single-numberhalf": 102 - 12.5,
+    "us-single-numberby-type": 102 - 18.75,
     percentilemost: 80,
     percentilefew: 70,
     slc80: 78,
@@ -48,11 +48,56 @@ test("100 dB(A) with LC − LA of 2 behind one muff, every method by hand (compu
   for (const [name, db] of Object.entries(byHand)) expect(found[name]).toBeCloseTo(db, 9);
 });
 
-test("a national allowance comes off every label and never off an own fit", () => {
+test("a national allowance comes off every label, never off an own fit, and off no derating in its place", () => {
   const protection = buildProtection(ALL, { ownFitDb: 15 });
   const plain = levelsOf(protection);
+  const bare = ["own-fit", "us-single-numberhalf", "us-single-numberby-type"];
   for (const [index, [name, db]] of levelsOf(protection, UK).entries())
-    expect(db).toBeCloseTo(plain[index]![1]! + (name === "own-fit" ? 0 : 4), 9);
+    expect(db).toBeCloseTo(plain[index]![1]! + (bare.includes(name) ? 0 : 4), 9);
+  // A rule that has both says so, and its own way keeps both: 102 − 12.5 + 4, off LA for it is derated: (25 − 7)/2.
+  const both = levelsOf(protection, { ...UK, derating: "half" });
+  expect(Object.fromEntries(both)["us-single-numberhalf"]).toBeCloseTo(100 - 9 + 4, 9);
+});
+
+describe("the US number comes off one level in all its ways, and each row says which", () => {
+  const usRows = (rule: typeof US, noise = NOISE) =>
+    everyMethod(noise, buildProtection(ALL), rule)
+      .methods.filter(({ method }) => method === "us-single-number")
+      .map(({ derating, startsFrom, atEarDb }) => [derating, startsFrom, atEarDb]);
+
+  test("off the C-weighted level where it is stated and the rule derates nothing", () => {
+    expect(usRows(US)).toEqual([
+      ["none", "lc", 77],
+      ["half", "lc", 89.5],
+      ["by-type", "lc", 83.25],
+    ]);
+  });
+
+  // 25 − 7, half of it, and 0.75 · 25 − 7 off 100.
+  const offA = [
+    ["none", "la", 82],
+    ["half", "la", 91],
+    ["by-type", "la", 88.25],
+  ];
+  test("off the A-weighted level without a C-weighted one, or where the rule derates", () => {
+    expect(usRows(US, buildLevel(100))).toEqual(offA);
+    expect(usRows({ ...US, derating: "by-type" })).toEqual(offA);
+  });
+
+  test("the other methods say theirs", () => {
+    const { methods } = everyMethod(NOISE, buildProtection(ALL), EU);
+    expect(
+      Object.fromEntries(methods.map(({ method, startsFrom }) => [method, startsFrom])),
+    ).toEqual({
+      "octave-band": "bands",
+      hml: "la",
+      snr: "lc",
+      "us-single-number": "lc",
+      percentile: "la",
+      slc80: "lc",
+      "own-fit": "la",
+    });
+  });
 });
 
 describe("which one governs", () => {

@@ -23,6 +23,7 @@ import {
   clampAttenuation,
   type Derating,
   deratedAttenuationDb,
+  deratedRatingDb,
   derateType,
   hmlReductionDb,
   NIOSH_BY_TYPE,
@@ -52,15 +53,32 @@ export function lcMinusLaDb(level: TaskLevel): number | null {
   return level.octaveBandsDb === null ? null : lcMinusLaOfSpectrumDb(level.octaveBandsDb);
 }
 
-/** Every method for which the protector has data, in a fixed order, the rule's allowance taken off. */
+/** The outside level that a method takes its figure off: A-weighted, C-weighted, or band by band. */
+export type StartsFrom = "la" | "lc" | "bands";
+
+/**
+ * What the US single number comes off: the C-weighted level where that is stated and nothing is derated, else the A-weighted
+ * one.
+ *
+ * @source osha-1910.95 App. B (i), (ii)
+ */
+export const usStartsFrom = (level: TaskLevel, { derating }: ProtectionRule): "la" | "lc" =>
+  level.lcMinusLaDb !== null && derating === "none" ? "lc" : "la";
+
+/**
+ * Every method for which the protector has data, in a fixed order, the rule's allowance taken off.
+ *
+ * @param usFrom for a comparison: the level that the US number is to come off, in place of the rule's own.
+ */
 export function reductions(
   level: TaskLevel,
   protection: Protection,
   rule: ProtectionRule,
+  usFrom: "la" | "lc" = usStartsFrom(level, rule),
 ): Reduction[] {
   const found = protection.outer
-    ? reductionsOfTwo(level, protection, protection.outer, rule)
-    : reductionsOfOne(level, protection.inner, rule);
+    ? reductionsOfTwo(level, protection, protection.outer, rule, usFrom)
+    : reductionsOfOne(level, protection.inner, rule, usFrom);
   const allowed = found.map((reduction) =>
     reduction.reductionDb === null
       ? reduction
@@ -77,7 +95,12 @@ export function reductions(
   return allowed;
 }
 
-function reductionsOfOne(level: TaskLevel, data: ProtectorData, rule: ProtectionRule): Reduction[] {
+function reductionsOfOne(
+  level: TaskLevel,
+  data: ProtectorData,
+  rule: ProtectionRule,
+  usFrom: "la" | "lc",
+): Reduction[] {
   const found: Reduction[] = [];
   const lcLaDb = lcMinusLaDb(level);
   if (data.bands !== null) found.push(byBands(level, assumedAttenuationDb(data.bands, rule.alpha)));
@@ -88,7 +111,7 @@ function reductionsOfOne(level: TaskLevel, data: ProtectorData, rule: Protection
   if (data.usRatingDb !== null) {
     found.push({
       method: "us-single-number",
-      reductionDb: usReductionDb(data.usRatingDb, data, level.lcMinusLaDb, rule),
+      reductionDb: usReductionDb(data.usRatingDb, data, level, rule, usFrom),
       reason: null,
     });
   }
@@ -104,6 +127,7 @@ function reductionsOfTwo(
   protection: Protection,
   outer: ProtectorData,
   rule: ProtectionRule,
+  usFrom: "la" | "lc",
 ): Reduction[] {
   const { inner, combinationBands } = protection;
   const found: Reduction[] = [];
@@ -122,7 +146,7 @@ function reductionsOfTwo(
       rule.double === "better-plus-5"
         ? {
             method: "us-single-number",
-            reductionDb: usReductionOfTwoDb(protection, outer, level, rule),
+            reductionDb: usReductionOfTwoDb(protection, outer, level, rule, usFrom),
             reason: null,
           }
         : missing("us-single-number", "combination-not-tested"),
@@ -136,28 +160,32 @@ function usReductionOfTwoDb(
   outer: ProtectorData,
   level: TaskLevel,
   rule: ProtectionRule,
+  usFrom: "la" | "lc",
 ): number {
   const { inner } = protection;
   return doubleAttenuationDb(
-    usReductionDb(inner.usRatingDb!, inner, level.lcMinusLaDb, rule),
-    usReductionDb(outer.usRatingDb!, outer, level.lcMinusLaDb, rule),
+    usReductionDb(inner.usRatingDb!, inner, level, rule, usFrom),
+    usReductionDb(outer.usRatingDb!, outer, level, rule, usFrom),
   );
 }
 
 /**
- * Reduction of the A-weighted level by the US single number, dB: off the C-weighted level where that is known and
- * nothing is derated, else 7 dB less off the A-weighted one.
+ * Reduction of the A-weighted level by the US single number, dB: off the C-weighted level, else 7 dB less off the
+ * A-weighted one.
  *
  * @source osha-1910.95 App. B (i), (ii)
  */
 function usReductionDb(
   ratingDb: number,
   data: ProtectorData,
-  lcLaDb: number | null,
+  { lcMinusLaDb: lcLaDb }: TaskLevel,
   rule: ProtectionRule,
+  usFrom: "la" | "lc",
 ): number {
-  if (lcLaDb !== null && rule.derating === "none") return ratingReductionDb(ratingDb, lcLaDb);
-  return deratedAttenuationDb(ratingDb, derateType(data.kind), DERATINGS[rule.derating]);
+  const [type, derating] = [derateType(data.kind), DERATINGS[rule.derating]];
+  return usFrom === "lc" && lcLaDb !== null
+    ? ratingReductionDb(deratedRatingDb(ratingDb, type, derating), lcLaDb)
+    : deratedAttenuationDb(ratingDb, type, derating);
 }
 
 function byBands(level: TaskLevel, assumedDb: OctaveBandValues): Reduction {

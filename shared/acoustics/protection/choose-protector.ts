@@ -46,7 +46,11 @@ export interface Offer extends Pick<Protection, "inner" | "outer" | "combination
 }
 
 export interface OwnFit {
+  /** With the confidence that the test states. */
   readonly parDb: number;
+  /** The same for the share that the rule's method protects, and for that of lower confidence; absent: `parDb`. */
+  readonly atRuleShareDb?: number;
+  readonly atLowerShareDb?: number;
   readonly hasPassed: boolean | null;
   /** ISO date. */
   readonly testedOn: string;
@@ -73,6 +77,7 @@ export type DecidedBy =
   | "first"
   | "compatibility"
   | "adequacy"
+  | "overprotection"
   | "margin"
   | "fit"
   | "battery"
@@ -94,17 +99,22 @@ export interface RankedProtector {
   readonly wornIn: string | null;
   /** By Appendix B: the TWA of all noises with it on, which the word is about. Null under other rules. */
   readonly twaDb: number | null;
-  /** By how far the lower-confidence level at the ear stays under the target, dB. */
+  /** EN 458's word beside it where the rule has no scale for too much; null: not asked for, or nothing known. */
+  readonly scaleWord: ProtectorWord | null;
+  /** By how far the level at the ear stays under the target at the confidence compared, dB. */
   readonly marginDb: number | null;
-  readonly lastFit: OwnFit | null;
+  /** Users protected by that much, percent; null: the share that the rule's own method protects. */
+  readonly marginSharePct: number | null;
+  readonly lastFit: Pick<OwnFit, "parDb" | "hasPassed" | "testedOn"> | null;
   readonly batteryMin: number | null;
   readonly batteryLasts: boolean | null;
   readonly stock: number | null;
   readonly decidedBy: DecidedBy;
 }
 
-/** Share of users that the lower-confidence level protects, as α: 95 %. @source iso-4869-2 4 */
+/** Share of users that the lower-confidence level protects, as α and in percent. @source iso-4869-2 4 */
 const LOWER_CONFIDENCE_ALPHA = 1.64;
+export const LOWER_CONFIDENCE_PCT = 95;
 
 /** An offer with all that does not depend on who wears it. */
 interface Prepared {
@@ -138,12 +148,14 @@ interface Noise {
  * some sums.
  *
  * The order is lexicographic: what gear, missing data or the archive exclude comes last; then the word while worn
- * (active part off, which a battery can't take away); then the lower-confidence margin under the target, in whole
- * decibels, since no method is surer (where all are too much: the least of it); own fit; whether the battery lasts;
- * stock; name. Each says which comparison put it behind the one before.
+ * (active part off, which a battery can't take away); where the rule has no word for too much, what is too much by EN 458
+ * after what is not; then the lower-confidence margin under the target, not rounded
+ * (where all are too much: the least of it); own fit; whether the battery lasts; stock; name. Each says which comparison
+ * put it behind the one before.
  *
- * The lower-confidence level is that of mean − 1.64 deviations where the octave-band method governs; a personal fit is
- * stated with its confidence, and a single number has its share protected in it.
+ * Like is compared with like: the lower-confidence level is that of mean − 1.64 deviations, and an own fit is restated
+ * for the same share. A single number has its share protected in it and says nothing of another; where one of those in
+ * question has no more, all are compared at the share of the rule's own method.
  *
  * @source en-458 Annex A
  * @source iso-4869-2 4, 6
@@ -157,6 +169,8 @@ export class ProtectorChoice {
     private readonly rule: Rule,
     /** The rule's law without a threshold: by it Appendix B's TWA adds up. */
     private readonly law: ExchangeLaw,
+    /** From where EN 458's words hang beside a rule that has no scale of its own, dB; null: they aren't asked for. */
+    private readonly besideScaleDb: number | null = null,
   ) {
     this.prepared = offers
       .map((offer) => prepare(offer, rule))
@@ -167,21 +181,30 @@ export class ProtectorChoice {
     const { prepared } = this;
     const noises = wearer.noises.map(toNoise);
     const targetDb = targetOf(this.rule, wearer.personalTargetDb);
+    const scaleDb =
+      this.besideScaleDb &&
+      Math.min(this.besideScaleDb, wearer.personalTargetDb ?? Number.POSITIVE_INFINITY);
     const count = prepared.length;
     const found: Judged[] = [];
-    const places = new Float64Array(count);
+    let hasLower = true;
     for (let index = 0; index < count; index += 1) {
       const one = prepared[index]!;
       const fit = fitOf(one, wearer);
-      const atEar = this.atEar(one, noises, fit, targetDb);
+      const atEar = this.atEar(one, noises, fit, targetDb, scaleDb);
       const judged = {
         atEar,
         fit,
         excludedBy: exclusionOf(one, wearer, atEar),
         batteryLasts: batteryLasts(one.offer, wearer.wornMin),
       };
+      if (judged.excludedBy === null && judged.atEar?.lowMarginDb === null) hasLower = false;
       found.push(judged);
-      places[index] = placeOf(one, judged) * count + index;
+    }
+    const places = new Float64Array(count);
+    for (let index = 0; index < count; index += 1) {
+      const judged = found[index]!;
+      const marginDb = marginOf(judged, hasLower);
+      places[index] = placeOf(prepared[index]!, judged, marginDb) * count + index;
     }
     places.sort();
     const ranked: RankedProtector[] = [];
@@ -191,7 +214,7 @@ export class ProtectorChoice {
       const place = (key - index) / count;
       const decidedBy = before === null ? "first" : decidingComparison(before, place);
       before = place;
-      ranked.push(shownAs(prepared[index]!, found[index]!, decidedBy));
+      ranked.push(shownAs(prepared[index]!, found[index]!, decidedBy, hasLower));
     }
     return ranked;
   }
@@ -202,52 +225,86 @@ export class ProtectorChoice {
     noises: readonly Noise[],
     fit: OwnFit | null,
     targetDb: number | null,
+    scaleDb: number | null,
   ): AtEar | null {
     if (noises.length === 0) return null;
     const { rule, law } = this;
     const isByShift = rule.adequacy === "appendix-b";
     let wornSum = 0;
+    let likeSum = 0;
     let lowSum = 0;
     let deciding: AtEar | null = null;
-    let worstMarginDb = Number.POSITIVE_INFINITY;
+    let scaled: Worded | null = null;
+    let likeMarginDb = Number.POSITIVE_INFINITY;
+    let lowMarginDb = Number.POSITIVE_INFINITY;
+    let hasLower = true;
     for (const noise of noises) {
       const governing = reductionDb(prepared, noise, rule, fit);
       if (governing === null) return null;
       const wornDb = noise.levelDb - Math.max(0, governing.reductionDb);
-      const lowDb = noise.levelDb - Math.max(0, governing.lowReductionDb);
+      const likeDb = noise.levelDb - Math.max(0, governing.likeReductionDb);
+      const lowDb = noise.levelDb - Math.max(0, governing.lowReductionDb ?? 0);
+      hasLower &&= governing.lowReductionDb !== null;
       if (isByShift) {
         if (deciding === null || wornDb > deciding.wornDb)
-          deciding = { word: null, wornDb, wornIn: noise.name, twaDb: null, marginDb: null };
+          deciding = { ...NO_MARGIN, word: null, wornDb, wornIn: noise.name };
+        if (scaleDb !== null) {
+          const word = en458Word(wornDb, scaleDb);
+          if (scaled === null || decidesBefore(word, wornDb, scaled)) scaled = { word, wornDb };
+        }
         wornSum += noise.durationMin * weightOf(wornDb, law);
+        likeSum += noise.durationMin * weightOf(likeDb, law);
         lowSum += noise.durationMin * weightOf(lowDb, law);
         continue;
       }
       const word =
         rule.adequacy === "en-458" && targetDb !== null ? en458Word(wornDb, targetDb) : null;
-      if (targetDb !== null) worstMarginDb = Math.min(worstMarginDb, targetDb - lowDb);
-      if (deciding === null || decidesBefore(word, wornDb, deciding)) {
-        deciding = { word, wornDb, wornIn: noise.name, twaDb: null, marginDb: null };
+      if (targetDb !== null) {
+        likeMarginDb = Math.min(likeMarginDb, targetDb - likeDb);
+        lowMarginDb = Math.min(lowMarginDb, targetDb - lowDb);
       }
+      if (deciding === null || decidesBefore(word, wornDb, deciding))
+        deciding = { ...NO_MARGIN, word, wornDb, wornIn: noise.name };
     }
-    if (!isByShift) return { ...deciding!, marginDb: targetDb === null ? null : worstMarginDb };
-    const factor = levelFactor(law);
-    const twaDb = factor * Math.log10(wornSum / law.referenceMin);
-    const lowDb = factor * Math.log10(lowSum / law.referenceMin);
+    if (targetDb === null && !isByShift) return deciding;
+    if (!isByShift)
+      return { ...deciding!, likeMarginDb, lowMarginDb: hasLower ? lowMarginDb : null };
+    const twaOf = (sum: number) => levelFactor(law) * Math.log10(sum / law.referenceMin);
+    const twaDb = twaOf(wornSum);
+    const scaleWord = scaled?.word ?? null;
+    if (targetDb === null) return { ...deciding!, twaDb, scaleWord };
     return {
       ...deciding!,
-      word: targetDb === null ? null : appendixBWord(twaDb, targetDb),
+      scaleWord,
+      word: appendixBWord(twaDb, targetDb),
       twaDb,
-      marginDb: targetDb === null ? null : targetDb - lowDb,
+      likeMarginDb: targetDb - twaOf(likeSum),
+      lowMarginDb: hasLower ? targetDb - twaOf(lowSum) : null,
     };
   }
 }
 
-interface AtEar {
+const NO_MARGIN = {
+  twaDb: null,
+  scaleWord: null,
+  likeMarginDb: null,
+  lowMarginDb: null,
+} as const;
+
+interface Worded {
   readonly word: ProtectorWord | null;
   readonly wornDb: number;
+}
+
+interface AtEar extends Worded {
   readonly wornIn: string;
+  /** See `RankedProtector`. */
+  readonly scaleWord: ProtectorWord | null;
   readonly twaDb: number | null;
-  readonly marginDb: number | null;
+  /** Under the target at the share that the rule's method protects, dB; null: no target. */
+  readonly likeMarginDb: number | null;
+  /** The same with lower confidence; null: the data have no spread. */
+  readonly lowMarginDb: number | null;
 }
 
 /** One offer as it stands for one worker. */
@@ -291,22 +348,36 @@ const ADEQUACY: Readonly<Record<ProtectorWord, number>> = {
 };
 const ADEQUACY_UNKNOWN = 4;
 
+/** No level is further than this from its target, dB. */
+const MIDDLE_DB = 511;
+/** Places a decibel: levels that differ by less differ by the rounding of the computer alone. */
+const PLACES_PER_DB = 1_000_000;
+const MIDDLE = MIDDLE_DB * PLACES_PER_DB;
+const MARGIN_PLACES = 2 * (MIDDLE + PLACES_PER_DB);
+
 /** The comparisons before the name, the first one first, with how many places each has. */
 const COMPARISONS = [
   ["compatibility", 2],
   ["adequacy", 5],
-  ["margin", 1024],
+  ["overprotection", 2],
+  ["margin", MARGIN_PLACES],
   ["fit", 3],
   ["battery", 3],
   ["stock", 3],
 ] as const satisfies readonly (readonly [DecidedBy, number])[];
 
 /** The places in all comparisons as the digits of one number: less is better. */
-function placeOf({ offer }: Prepared, { atEar, fit, excludedBy, batteryLasts }: Judged): number {
+function placeOf(
+  { offer }: Prepared,
+  { atEar, fit, excludedBy, batteryLasts }: Judged,
+  marginDb: number | null,
+): number {
   const word = atEar?.word ?? null;
+  const isTooMuchBeside = word === "enough" && atEar?.scaleWord === "too-much";
   let place = excludedBy === null ? 0 : 1;
   place = 5 * place + (word === null ? ADEQUACY_UNKNOWN : ADEQUACY[word]);
-  place = 1024 * place + marginStep(atEar?.marginDb ?? null, word);
+  place = 2 * place + (isTooMuchBeside ? 1 : 0);
+  place = MARGIN_PLACES * place + marginStep(marginDb, isTooMuchBeside ? "too-much" : word);
   place = 3 * place + (fit === null || fit.hasPassed === null ? 1 : fit.hasPassed ? 0 : 2);
   place =
     3 * place +
@@ -327,24 +398,26 @@ function decidingComparison(before: number, place: number): DecidedBy {
   return decidedBy;
 }
 
+const marginOf = ({ atEar }: Judged, hasLower: boolean): number | null =>
+  atEar === null ? null : hasLower ? atEar.lowMarginDb : atEar.likeMarginDb;
+
 /**
- * Whole decibels of margin, the most first. Of what is too much somewhere the least first, but what may be too little
+ * The place of a margin, the most first. Of what is too much somewhere the least first, but what may be too little
  * elsewhere after all that is surely enough.
  */
 function marginStep(marginDb: number | null, word: ProtectorWord | null): number {
-  const step = Math.max(-MIDDLE, Math.min(MIDDLE, Math.floor(marginDb ?? 0)));
+  const step = Math.max(-MIDDLE, Math.min(MIDDLE, Math.round((marginDb ?? 0) * PLACES_PER_DB)));
   if (word !== "too-much") return MIDDLE - step;
   return step >= 0 ? step : MIDDLE - step;
 }
 
-/** No level is further than this from its target, dB. */
-const MIDDLE = 511;
-
 function shownAs(
   { offer }: Prepared,
-  { atEar, fit, excludedBy, batteryLasts }: Judged,
+  judged: Judged,
   decidedBy: DecidedBy,
+  hasLower: boolean,
 ): RankedProtector {
+  const { atEar, fit, excludedBy, batteryLasts } = judged;
   return {
     modelId: offer.inner.modelId,
     outerModelId: offer.outer?.modelId ?? null,
@@ -355,8 +428,10 @@ function shownAs(
     wornDb: atEar?.wornDb ?? null,
     wornIn: atEar?.wornIn ?? null,
     twaDb: atEar?.twaDb ?? null,
-    marginDb: atEar?.marginDb ?? null,
-    lastFit: fit,
+    scaleWord: atEar?.scaleWord ?? null,
+    marginDb: marginOf(judged, hasLower),
+    marginSharePct: hasLower ? LOWER_CONFIDENCE_PCT : null,
+    lastFit: fit && { parDb: fit.parDb, hasPassed: fit.hasPassed, testedOn: fit.testedOn },
     batteryMin: offer.inner.active?.batteryMin ?? null,
     batteryLasts,
     stock: offer.stock,
@@ -365,7 +440,7 @@ function shownAs(
 }
 
 /** Too little before all (the loudest), then too much (the quietest), then the loudest. */
-function decidesBefore(word: ProtectorWord | null, wornDb: number, other: AtEar): boolean {
+function decidesBefore(word: ProtectorWord | null, wornDb: number, other: Worded): boolean {
   const rank = rankOf(word);
   const otherRank = rankOf(other.word);
   if (rank !== otherRank) return rank < otherRank;
@@ -439,16 +514,27 @@ function toNoise({ name, level, durationMin }: Wearer["noises"][number]): Noise 
   return { name, levelDb, durationMin, powers, lcLaDb: lcMinusLaDb(level), statedLcLaDb };
 }
 
-/** What the rule's governing method takes off, and what it does with lower confidence, dB; null: none of them can say. */
+interface Reductions {
+  readonly reductionDb: number;
+  /** For the share that the rule's method protects: an own fit may be stated for another. */
+  readonly likeReductionDb: number;
+  /** With lower confidence; null: the data have no spread. */
+  readonly lowReductionDb: number | null;
+}
+
+/** What the rule's governing method takes off, dB; null: none of them can say. */
 function reductionDb(
   prepared: Prepared,
   noise: Noise,
   rule: Rule,
   fit: OwnFit | null,
-): { reductionDb: number; lowReductionDb: number } | null {
+): Reductions | null {
   if (rule.methods.length === 0) return null;
-  if (fit !== null && rule.ownFit === "replaces")
-    return { reductionDb: fit.parDb, lowReductionDb: fit.parDb };
+  const fitDb = fit?.parDb ?? null;
+  const likeFitDb = fit?.atRuleShareDb ?? fitDb;
+  const lowFitDb = fit?.atLowerShareDb ?? fitDb;
+  if (fitDb !== null && rule.ownFit === "replaces")
+    return { reductionDb: fitDb, likeReductionDb: likeFitDb!, lowReductionDb: lowFitDb };
   for (const method of rule.methods) {
     const found = byMethodDb(prepared, noise, method, fit);
     if (found === null) continue;
@@ -457,16 +543,18 @@ function reductionDb(
     const low =
       method === "octave-band"
         ? bandReductionDb(noise.powers!, prepared.lowFactors!) - allowanceDb
-        : label;
-    return fit === null
-      ? { reductionDb: label, lowReductionDb: low }
-      : {
-          reductionDb: Math.min(Math.max(0, label), fit.parDb),
-          lowReductionDb: Math.min(Math.max(0, low), fit.parDb),
-        };
+        : null;
+    return {
+      reductionDb: loweredTo(label, fitDb),
+      likeReductionDb: loweredTo(label, likeFitDb),
+      lowReductionDb: low === null ? null : loweredTo(low, lowFitDb),
+    };
   }
   return null;
 }
+
+const loweredTo = (labelDb: number, fitDb: number | null): number =>
+  fitDb === null ? labelDb : Math.min(Math.max(0, labelDb), fitDb);
 
 function byMethodDb(
   prepared: Prepared,

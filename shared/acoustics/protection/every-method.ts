@@ -1,6 +1,12 @@
 import type { AttenuationMethod, Protection, Reason, RuleSetVersion, TaskLevel } from "../types";
 import { governingMethod } from "./at-ear";
-import { methodResult, type Reduction, reductions } from "./attenuation";
+import {
+  methodResult,
+  type Reduction,
+  reductions,
+  type StartsFrom,
+  usStartsFrom,
+} from "./attenuation";
 
 type Rule = RuleSetVersion["protection"];
 
@@ -27,6 +33,8 @@ export interface MethodAtEar {
   readonly protectedPct: number | null;
   /** Of the US single number. */
   readonly derating: Rule["derating"] | null;
+  /** The outside level that its figure comes off. */
+  readonly startsFrom: StartsFrom;
   /** Of the percentile pair: what most users reach, or only few. */
   readonly reachedBy: "most" | "few" | null;
   /** Without programme audio, active part off, dB(A). */
@@ -49,8 +57,9 @@ export interface EveryMethod {
 }
 
 /**
- * The level at the ear in one task's noise by every method there is, each with its level or why there is none. A flat
- * national allowance is taken off as the rule has it.
+ * The level at the ear in one task's noise by every method there is, each with its level or why there is none. The US
+ * number comes off one and the same outside level in all its ways, that of the rule's own. A flat national allowance is
+ * taken off as the rule has it, but off no way of derating that is not the rule's: the two are alternatives.
  *
  * @source iso-4869-2 6, 7, 8
  * @source osha-1910.95 App. B
@@ -58,6 +67,7 @@ export interface EveryMethod {
  * @source as-nzs-1270 App. A
  */
 export function everyMethod(level: TaskLevel, protection: Protection, rule: Rule): EveryMethod {
+  const usFrom = usStartsFrom(level, rule);
   const byRule = new Map(
     reductions(level, protection, rule).map((one) => [one.method, one] as const),
   );
@@ -73,12 +83,16 @@ export function everyMethod(level: TaskLevel, protection: Protection, rule: Rule
     ...PLAIN,
     ...way,
     ...methodResult(level.levelDb, reduction),
+    startsFrom: reduction.method === "us-single-number" ? usFrom : STARTS_FROM[reduction.method],
     reductionDb: reduction.reductionDb,
     governs: governs(reduction.method, way.isOfRule),
   });
   const underRule = (changed: Partial<Rule>, method: AttenuationMethod): Reduction =>
-    reductions(level, protection, { ...rule, ...changed }).find((one) => one.method === method) ??
-    of(method);
+    reductions(level, protection, { ...rule, ...changed }, usFrom).find(
+      (one) => one.method === method,
+    ) ?? of(method);
+  const derated = (derating: Rule["derating"]): Partial<Rule> =>
+    derating === "none" || derating === rule.derating ? { derating } : { derating, allowanceDb: 0 };
   const methods = [
     ...alphasOf(rule).map(({ pct, alpha }) =>
       seen(underRule({ alpha }, "octave-band"), {
@@ -89,7 +103,7 @@ export function everyMethod(level: TaskLevel, protection: Protection, rule: Rule
     seen(of("hml"), OF_RULE),
     seen(of("snr"), OF_RULE),
     ...DERATING_NAMES.map((derating) =>
-      seen(underRule({ derating }, "us-single-number"), {
+      seen(underRule(derated(derating), "us-single-number"), {
         derating,
         isOfRule: derating === rule.derating,
       }),
@@ -105,6 +119,15 @@ export function everyMethod(level: TaskLevel, protection: Protection, rule: Rule
   const spreadDb = levels.length < 2 ? null : Math.max(...levels) - Math.min(...levels);
   return { methods, spreadDb, isSpreadLarge: spreadDb !== null && spreadDb > LARGE_SPREAD_DB };
 }
+
+const STARTS_FROM: Readonly<Record<Exclude<AttenuationMethod, "us-single-number">, StartsFrom>> = {
+  "octave-band": "bands",
+  hml: "la",
+  snr: "lc",
+  percentile: "la",
+  slc80: "lc",
+  "own-fit": "la",
+};
 
 type Way = Partial<Pick<MethodAtEar, "protectedPct" | "derating" | "reachedBy">> &
   Pick<MethodAtEar, "isOfRule">;

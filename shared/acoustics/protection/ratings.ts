@@ -121,23 +121,6 @@ export function roundedUsRating(ratingDb: number): number {
   return Math.ceil(ratingDb - 0.5);
 }
 
-/**
- * SLC80 of mean − deviation by band from 125 Hz, dB, before it is rounded: what comes off the C-weighted level of a pink
- * noise. The reference noise is from memory.
- *
- * @source as-nzs-1270 App. A, from memory
- */
-export function slc80OfBandsDb(bands: BandAttenuation): number {
-  const assumedDb = assumedAttenuationDb(bands, 1);
-  let outside = 0;
-  let atEar = 0;
-  for (let band = 1; band < assumedDb.length; band++) {
-    outside += 10 ** (C_WEIGHTING_DB[band]! / 10);
-    atEar += 10 ** ((A_WEIGHTING_DB[band]! - assumedDb[band]!) / 10);
-  }
-  return 10 * Math.log10(outside / atEar);
-}
-
 /** Least SLC80 of each class from 1, dB. */
 const CLASS_FROM_DB = [10, 14, 18, 22, 26] as const;
 
@@ -171,12 +154,11 @@ export interface RatingComparison {
 const ROUNDING_DB = 1;
 
 /**
- * H, M, L, SNR, the US number and SLC80 of a model beside what its test data give. Subjects, where they are known, come
- * before means and deviations.
+ * H, M, L, SNR and the US number of a model beside what its test data give. Subjects, where they are known, come before
+ * means and deviations. SLC80 is taken from the label: its reference noise stands in a document that nobody here has read.
  *
  * @source iso-4869-2 5, 7, 8
  * @source epa-40-cfr-211 211.207
- * @source as-nzs-1270 App. A
  */
 export function compareRatings(data: ProtectorData): RatingComparison[] {
   const { bands, usLabel, subjectsDb } = data;
@@ -188,7 +170,7 @@ export function compareRatings(data: ProtectorData): RatingComparison[] {
     compared("l", data.lDb, european?.lDb, by),
     compared("snr", data.snrDb, european?.snrDb, by),
     compared("us", data.usRatingDb, usLabel ? usRatingOfLabelDb(usLabel) : undefined, "us-label"),
-    compared("slc80", data.slc80Db, bands ? slc80OfBandsDb(bands) : undefined, "pooled"),
+    compared("slc80", data.slc80Db, undefined, null),
   ];
 }
 

@@ -105,6 +105,20 @@ export function deratedAttenuationDb(
     : usRatingDb * factor - SPECTRAL_CORRECTION_DB;
 }
 
+/**
+ * The US single number derated against a C-weighted level, dB: the factor alone, for no spectral correction is due there.
+ *
+ * @source niosh-98-126 6
+ * @source osha-otm III:5, half of it from memory
+ */
+export function deratedRatingDb(
+  usRatingDb: number,
+  type: ProtectorType,
+  { factors }: Derating,
+): number {
+  return usRatingDb * factors[type];
+}
+
 /** A derating never makes a protector louder than the bare ear; says where it would have. */
 export function clampAttenuation(attenuationDb: number): {
   readonly attenuationDb: number;

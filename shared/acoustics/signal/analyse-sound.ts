@@ -175,7 +175,7 @@ class ChannelAnalysis {
       clipping: {
         runs: this.clips.runs,
         samples: this.clips.samples,
-        sharePct: samples > 0 ? (100 * this.clips.samples) / samples : 0,
+        sharePct: this.clips.sharePct,
       },
     };
   }

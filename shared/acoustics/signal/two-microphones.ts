@@ -134,8 +134,8 @@ export class MicrophonePair {
       bands,
       deadChannel: deadChannel(bands, (side) => this.floorDb(side, LOWEST_HZ, HIGHEST_HZ)),
       clippedPct: {
-        outside: clippedPct(this.clips.outside),
-        inside: clippedPct(this.clips.inside),
+        outside: this.clips.outside.sharePct,
+        inside: this.clips.inside.sharePct,
       },
     };
   }
@@ -250,8 +250,6 @@ function shareInBand(lineHz: number, stepHz: number, { lowerHz, upperHz }: Band)
   const to = Math.min(upperHz, lineHz + stepHz / 2);
   return Math.max(0, to - from) / stepHz;
 }
-
-const clippedPct = ({ samples, total }: ClipCounter) => (total === 0 ? 0 : (100 * samples) / total);
 
 function sumDb(levels: readonly (number | null)[]): number {
   return (

@@ -17,6 +17,7 @@ const method = (of: Partial<MethodRow>): MethodRow => ({
   protectedPct: null,
   derating: null,
   reachedBy: null,
+  startsFrom: "lc",
   atEarDb: null,
   reductionDb: null,
   wasClamped: false,

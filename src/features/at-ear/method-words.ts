@@ -16,7 +16,9 @@ export function methodInItsWay(i18n: I18n, row: MethodRow): string {
     case "us-single-number":
       switch (row.derating) {
         case "half":
-          return i18n.t("US single number, half of the rating less 7 dB");
+          return row.startsFrom === "lc"
+            ? i18n.t("US single number, half of the rating")
+            : i18n.t("US single number, half of the rating less 7 dB");
         case "by-type":
           return i18n.t("US single number, less by type");
         default:
@@ -30,6 +32,18 @@ export function methodInItsWay(i18n: I18n, row: MethodRow): string {
       return i18n.t("SLC80");
     case "own-fit":
       return i18n.t("Own fit");
+  }
+}
+
+/** What the method's figure comes off. */
+export function startWord(i18n: I18n, { startsFrom }: MethodRow): string {
+  switch (startsFrom) {
+    case "la":
+      return i18n.t("off the A-weighted level");
+    case "lc":
+      return i18n.t("off the C-weighted level");
+    case "bands":
+      return i18n.t("band by band");
   }
 }
 

@@ -7,12 +7,12 @@ import { DropStrip, StripGround, StripScale } from "../../components/drop-strip"
 import { bandBelow } from "../../components/strip-of-day";
 import { useLocale } from "../../lib/i18n";
 import { useIsPhone } from "../../lib/use-is-phone";
-import { methodInItsWay, whyNot } from "./method-words";
+import { methodInItsWay, startWord, whyNot } from "./method-words";
 
 const rowKey = ({ method, protectedPct, derating, reachedBy }: MethodRow) =>
   [method, protectedPct, derating, reachedBy].join(" ");
 
-/** A flat allowance that the rule set has is on every level but that of an own fit. */
+/** A flat allowance that the rule set has is on every level but that of an own fit and a derated one. */
 export function AllowanceLine({ view }: { view: AtEarView }) {
   const { i18n } = useLingui();
   const locale = useLocale();
@@ -21,9 +21,10 @@ export function AllowanceLine({ view }: { view: AtEarView }) {
   if (allowanceDb === 0) return null;
   return (
     <p className="picture-legend">
-      {i18n.t("Every level has the rule set’s {allowance} dB on it, but for an own fit.", {
-        allowance: formatLimit(allowanceDb, locale),
-      })}
+      {i18n.t(
+        "Every level has the rule set’s {allowance} dB on it, but for an own fit and for a US number that is derated: one takes the other’s place.",
+        { allowance: formatLimit(allowanceDb, locale) },
+      )}
     </p>
   );
 }
@@ -56,7 +57,12 @@ export function MethodsTable({
       id: "method",
       head: i18n.t("Method"),
       isRowHead: true,
-      cell: (row) => (row.governs ? <b>{methodInItsWay(i18n, row)}</b> : methodInItsWay(i18n, row)),
+      cell: (row) => (
+        <span className="two-lines">
+          {row.governs ? <b>{methodInItsWay(i18n, row)}</b> : methodInItsWay(i18n, row)}
+          {row.atEarDb !== null && <span className="beneath">{startWord(i18n, row)}</span>}
+        </span>
+      ),
     },
     {
       id: "at-ear",

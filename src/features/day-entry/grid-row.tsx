@@ -365,7 +365,7 @@ function ProtectorContent({ found }: { found: RowEvaluation }) {
   const [first, ...others] = found.protectors;
   if (!first) return <span className="not-assessed">{i18n.t("none")}</span>;
   return (
-    <span className="two-lines">
+    <span className={others.length === 1 ? "two-lines has-second" : "two-lines"}>
       <span className="clip">{first.name}</span>
       {others.map(({ name, taskNames }) => (
         <ForTasks key={name} name={name} tasks={taskNames.join(", ")} />

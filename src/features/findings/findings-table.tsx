@@ -19,6 +19,7 @@ import {
 import { FindingDue } from "../../components/finding-due";
 import { FindingWords } from "../../components/finding-words";
 import { TextLink } from "../../components/link";
+import { useKeepFindingOrder } from "../../lib/finding-order";
 import { useLocale } from "../../lib/i18n";
 import { paths } from "../../paths";
 
@@ -74,6 +75,7 @@ export function FindingsTable({
       (a.dueOn ?? NEVER).localeCompare(b.dueOn ?? NEVER) ||
       overBy(b) - overBy(a),
   );
+  useKeepFindingOrder(sorted.map(({ id }) => id));
   const columns: DataColumn<FindingRow>[] = [
     {
       id: "due",
@@ -95,6 +97,7 @@ export function FindingsTable({
           <span className="beneath">
             {findingStateWord(i18n, finding.state)}
             {finding.ownerName && `, ${isolate(finding.ownerName)}`}
+            {finding.wentUp && `; ${i18n.t("went up to {name}", { name: finding.wentUp.name })}`}
           </span>
         </span>
       ),

@@ -10,6 +10,11 @@ import {
   type FindingStepInput,
   FindingView,
 } from "../../../shared/schemas/finding";
+import {
+  type FindingFileInput,
+  FollowUpView,
+  MeasureView,
+} from "../../../shared/schemas/follow-up";
 import { api } from "../../lib/api";
 
 export interface FindingListFilter {
@@ -37,6 +42,12 @@ export const findingQueries = {
     queryOptions({
       queryKey: [...findingQueries.all, "one", id],
       queryFn: ({ signal }) => api.get(`/findings/${id}`, { schema: FindingView, signal }),
+    }),
+  followUp: (id: string) =>
+    queryOptions({
+      queryKey: [...findingQueries.all, "follow-up", id],
+      queryFn: ({ signal }) =>
+        api.get(`/findings/${id}/follow-up`, { schema: FollowUpView, signal }),
     }),
 };
 
@@ -67,4 +78,45 @@ export function useFindingStep(id: string) {
       ]);
     },
   });
+}
+
+/** What hangs on a finding was changed: it is asked for again. */
+export function useFollowUpChanged(id: string) {
+  const client = useQueryClient();
+  return () => client.invalidateQueries({ queryKey: findingQueries.followUp(id).queryKey });
+}
+
+export function useStrikeMeasure(findingId: string) {
+  const changed = useFollowUpChanged(findingId);
+  return useMutation({
+    mutationFn: ({ measure, reason, key }: { measure: MeasureView; reason: string; key: string }) =>
+      api.post(`/findings/${findingId}/measures/${measure.id}/strike`, {
+        body: { reason },
+        schema: MeasureView,
+        ifMatch: String(measure.revision),
+        idempotencyKey: key,
+      }),
+    onSuccess: changed,
+  });
+}
+
+const Files = FollowUpView.pick({ files: true });
+
+export function useFindingFiles(findingId: string) {
+  const changed = useFollowUpChanged(findingId);
+  const attach = useMutation({
+    mutationFn: ({ body, key }: { body: FindingFileInput; key: string }) =>
+      api.post(`/findings/${findingId}/files`, { body, schema: Files, idempotencyKey: key }),
+    onSuccess: changed,
+  });
+  const remove = useMutation({
+    mutationFn: ({ fileId, reason, key }: { fileId: string; reason: string; key: string }) =>
+      api.post(`/findings/${findingId}/files/${fileId}/removal`, {
+        body: { reason },
+        schema: Files,
+        idempotencyKey: key,
+      }),
+    onSuccess: changed,
+  });
+  return { attach, remove };
 }

@@ -27,6 +27,7 @@ const view = (overrides: Partial<FindingView> = {}): FindingView =>
     workersCount: 1,
     dueOn: "2026-12-01",
     rulesUntil: null,
+    wentUp: null,
     siteId: id,
     worker: null,
     subjectName: null,
@@ -61,8 +62,15 @@ function show(finding: FindingView) {
 }
 
 test("the steps are those of the state and of what the reader may do", () => {
-  expect(stepsFor(view())).toEqual(["take-in-hand", "mark-done", "cannot", "close", "comment"]);
-  expect(stepsFor(view({ state: "done" }))).toEqual(["reopen", "close", "comment"]);
+  expect(stepsFor(view())).toEqual([
+    "take-in-hand",
+    "hand-over",
+    "mark-done",
+    "cannot",
+    "close",
+    "comment",
+  ]);
+  expect(stepsFor(view({ state: "done" }))).toEqual(["hand-over", "reopen", "close", "comment"]);
   expect(stepsFor(view({ state: "closed" }))).toEqual(["comment"]);
   expect(stepsFor(view({ can: { handle: false, markDone: true, comment: true } }))).toEqual([
     "mark-done",

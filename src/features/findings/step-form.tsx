@@ -1,4 +1,5 @@
 import { useLingui } from "@lingui/react";
+import { useQuery } from "@tanstack/react-query";
 import { type KeyboardEvent, useRef, useState } from "react";
 import { z } from "zod";
 import { findingStateWord } from "../../../shared/findings/words";
@@ -10,6 +11,7 @@ import {
   DateField,
   Form,
   FormActions,
+  SelectField,
   SubmitButton,
   showIssuesOn,
   TextAreaField,
@@ -21,13 +23,14 @@ import { ApiError, newChangeKey } from "../../lib/api";
 import { useLocale } from "../../lib/i18n";
 import { useMoveFocus } from "../../lib/move-focus";
 import { savedMeanwhile } from "../../lib/stale";
-import { useFindingStep } from "./queries";
+import { findingQueries, useFindingStep } from "./queries";
 
 type StepKind = FindingStepInput["kind"];
 
 /** From where each step may be taken: the server holds to the same. */
 const STEPS_FROM: Readonly<Record<StepKind, readonly FindingView["state"][]>> = {
   "take-in-hand": ["new", "came-back", "in-hand"],
+  "hand-over": ["new", "in-hand", "came-back", "done"],
   "mark-done": ["new", "in-hand", "came-back"],
   cannot: ["new", "in-hand", "came-back"],
   reopen: ["done"],
@@ -38,6 +41,7 @@ const STEPS_FROM: Readonly<Record<StepKind, readonly FindingView["state"][]>> = 
 export function stepsFor(finding: Pick<FindingView, "state" | "can">): StepKind[] {
   const rights: Readonly<Record<StepKind, boolean>> = {
     "take-in-hand": finding.can.handle,
+    "hand-over": finding.can.handle,
     "mark-done": finding.can.markDone,
     cannot: finding.can.markDone,
     reopen: finding.can.handle,
@@ -67,6 +71,7 @@ export function StepForm({ finding }: { finding: FindingView }) {
   const kinds = stepsFor(finding);
   const labels: Readonly<Record<StepKind, string>> = {
     "take-in-hand": i18n.t("Take in hand"),
+    "hand-over": i18n.t("Hand over"),
     "mark-done": i18n.t("Mark done"),
     cannot: i18n.t("Can’t, because…"),
     reopen: i18n.t("Reopen"),
@@ -125,6 +130,7 @@ const TextStep = z.object({ text: z.string().trim().min(3).max(2000) });
 const FreeTextStep = z.object({ text: z.string().trim().max(2000) });
 const CommentStep = z.object({ text: z.string().trim().min(1).max(10_000) });
 const DueStep = z.object({ dueOn: z.iso.date().nullable() });
+const HandOverStep = z.object({ ownerId: z.uuid(), dueOn: z.iso.date().nullable() });
 
 interface StepProps {
   kind: StepKind;
@@ -135,11 +141,9 @@ interface StepProps {
 }
 
 function Step(props: StepProps) {
-  return props.kind === "take-in-hand" ? (
-    <DueForm {...props} />
-  ) : (
-    <TextForm {...props} kind={props.kind} />
-  );
+  if (props.kind === "take-in-hand") return <DueForm {...props} />;
+  if (props.kind === "hand-over") return <HandOverForm {...props} />;
+  return <TextForm {...props} kind={props.kind} />;
 }
 
 function useSend({ finding, onDone }: StepProps) {
@@ -206,7 +210,47 @@ function DueForm(props: StepProps) {
   );
 }
 
-function TextForm(props: StepProps & { kind: Exclude<StepKind, "take-in-hand"> }) {
+function HandOverForm(props: StepProps) {
+  const { i18n } = useLingui();
+  const send = useSend(props);
+  const { data, error } = useQuery(findingQueries.followUp(props.finding.id));
+  const form = useSchemaForm(HandOverStep, {
+    defaultValues: { ownerId: "", dueOn: props.finding.dueOn },
+    keepAs: `hand-over ${props.finding.id}`,
+  });
+  return (
+    <Form
+      aria-label={props.label}
+      onKeyDown={leaveOnEscape(props.onCancel)}
+      onSubmit={form.handleSubmit(({ ownerId, dueOn }) =>
+        send.submit(
+          { kind: "hand-over", ownerId, dueOn },
+          props.finding.revision,
+          showIssuesOn(form, i18n),
+        ),
+      )}
+    >
+      <SelectField
+        form={form}
+        name="ownerId"
+        label={i18n.t("To whom")}
+        emptyLabel={i18n.t("Choose a person")}
+        choices={(data?.owners ?? []).map(({ id, name }) => ({ value: id, label: name }))}
+      />
+      <DateField
+        form={form}
+        name="dueOn"
+        label={i18n.t("Due")}
+        note={i18n.t("By when you want it done. Empty leaves the date as it is.")}
+        isOptional
+      />
+      {!data && <FormProblem error={error} />}
+      <StepEnd send={send} {...props} />
+    </Form>
+  );
+}
+
+function TextForm(props: StepProps & { kind: Exclude<StepKind, "take-in-hand" | "hand-over"> }) {
   const { i18n } = useLingui();
   const { kind } = props;
   const send = useSend(props);

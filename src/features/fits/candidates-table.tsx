@@ -1,11 +1,12 @@
 import { useLingui } from "@lingui/react";
 import { formatDuration } from "../../../shared/format/duration";
 import { formatLevel, formatLevelChange } from "../../../shared/format/level";
+import { withinSentence } from "../../../shared/format/words";
 import type { Candidate } from "../../../shared/schemas/fit";
 import { type DataColumn, DataTable } from "../../components/data-table";
 import { Empty } from "../../components/empty";
 import { TextButton } from "../../components/link";
-import { ProtectorWord } from "../../components/protector-word";
+import { ProtectorWord, protectorWordText } from "../../components/protector-word";
 import { useLocale } from "../../lib/i18n";
 import { passWord } from "../../lib/register-words";
 import { decidedWord, exclusionWord } from "./fit-words";
@@ -16,6 +17,24 @@ export const candidateKey = ({
   outerModelId,
 }: Pick<Candidate, "modelId" | "outerModelId">): string =>
   outerModelId === null ? modelId : `${modelId} ${outerModelId}`;
+
+/** At which confidence the margins are compared: labels and own fits at the same. */
+function MarginNote({ candidates }: { candidates: readonly Candidate[] }) {
+  const { i18n } = useLingui();
+  const shown = candidates.find(({ marginDb }) => marginDb !== null);
+  if (!shown) return null;
+  return (
+    <p className="beneath">
+      {shown.marginSharePct === null
+        ? i18n.t(
+            "Margin: for the share of users that the rule’s own method protects, labels and own fits alike.",
+          )
+        : i18n.t("Margin: for {pct} % of users, labels and own fits alike.", {
+            pct: shown.marginSharePct,
+          })}
+    </p>
+  );
+}
 
 /** The register in the order in which it suits a noise, each with the comparison that decided. */
 export function CandidatesTable({
@@ -35,7 +54,7 @@ export function CandidatesTable({
   chosen: string;
   /** What picking one does; absent: nothing is to be picked here. */
   pickLabel?: (name: string) => string;
-  onPick: (candidate: Candidate) => void;
+  onPick?: (candidate: Candidate) => void;
   hasOwnFit?: boolean;
 }) {
   const { i18n } = useLingui();
@@ -51,7 +70,7 @@ export function CandidatesTable({
             <TextButton
               className="is-name"
               aria-label={pickLabel(row.name)}
-              onClick={() => onPick(row)}
+              onClick={() => onPick?.(row)}
             >
               {row.name}
             </TextButton>
@@ -77,7 +96,7 @@ export function CandidatesTable({
       id: "word",
       head: i18n.t("While worn"),
       unit: "dB",
-      cell: ({ word, wornDb, wornIn, twaDb }) => (
+      cell: ({ word, wornDb, wornIn, twaDb, scaleWord }) => (
         <ProtectorWord
           word={word}
           beneath={
@@ -86,6 +105,10 @@ export function CandidatesTable({
               : [
                   `${wornIn ?? ""} ${formatLevel(wornDb, locale)}`.trim(),
                   twaDb !== null && i18n.t("shift {twa}", { twa: formatLevel(twaDb, locale) }),
+                  scaleWord !== null &&
+                    i18n.t("by EN 458 {word}", {
+                      word: withinSentence(protectorWordText(i18n, scaleWord), locale),
+                    }),
                 ]
                   .filter(Boolean)
                   .join(", ")
@@ -98,7 +121,6 @@ export function CandidatesTable({
       head: i18n.t("Margin"),
       unit: "dB",
       kind: "figure",
-      hidesOnPhone: true,
       cell: ({ marginDb }) => formatLevelChange(marginDb, locale),
     },
     {
@@ -120,7 +142,6 @@ export function CandidatesTable({
       id: "stock",
       head: i18n.t("In stock"),
       kind: "figure",
-      hidesOnPhone: true,
       cell: ({ stock, batteryMin, batteryLasts }) => (
         <span className="two-lines">
           {stock ?? "–"}
@@ -134,19 +155,25 @@ export function CandidatesTable({
     },
   ];
   return (
-    <DataTable<Candidate>
-      caption={caption}
-      rows={candidates}
-      rowKey={candidateKey}
-      columns={hasOwnFit ? columns : columns.filter(({ id }) => id !== "fit")}
-      isTwoLine
-      isSelected={(row) => candidateKey(row) === chosen}
-      groupOf={({ excludedBy }) =>
-        excludedBy
-          ? { key: "out", label: i18n.t("Out of the question") }
-          : { key: "in", label: inHead }
-      }
-      empty={<Empty title={i18n.t("No protector is on the register yet.")} />}
-    />
+    <>
+      <div className="candidates">
+        <DataTable<Candidate>
+          caption={caption}
+          rows={candidates}
+          rowKey={candidateKey}
+          columns={hasOwnFit ? columns : columns.filter(({ id }) => id !== "fit")}
+          isTwoLine
+          stacksOnPhone
+          isSelected={(row) => candidateKey(row) === chosen}
+          groupOf={({ excludedBy }) =>
+            excludedBy
+              ? { key: "out", label: i18n.t("Out of the question") }
+              : { key: "in", label: inHead }
+          }
+          empty={<Empty title={i18n.t("No protector is on the register yet.")} />}
+        />
+      </div>
+      <MarginNote candidates={candidates} />
+    </>
   );
 }

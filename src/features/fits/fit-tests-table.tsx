@@ -6,10 +6,16 @@ import type { FitTestView } from "../../../shared/schemas/fit";
 import { type DataColumn, DataTable, type DataTableProps } from "../../components/data-table";
 import { TextButton, TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
-import { passWord } from "../../lib/register-words";
 import { paths } from "../../paths";
 import { CorrectFit, StrikeFit } from "./fit-change";
-import { fitMethodWord, outcomeWord } from "./fit-words";
+import {
+  activeWord,
+  fitMethodWord,
+  isFault,
+  notRatedWord,
+  outcomeWord,
+  saysWord,
+} from "./fit-words";
 
 /** Fits by date: who, which device, what came off, and whether that was enough. */
 export function FitTestsTable({
@@ -85,10 +91,16 @@ export function FitTestsTable({
       head: i18n.t("PAR"),
       unit: "dB",
       kind: "figure",
-      cell: ({ parDb, confidencePct, isVoid }) => (
+      cell: (test) => (
         <span className="two-lines">
-          {isVoid ? <s>{formatLevel(parDb, locale)}</s> : <b>{formatLevel(parDb, locale)}</b>}
-          <span className="beneath">{i18n.t("at {pct} %", { pct: confidencePct })}</span>
+          {test.isVoid ? (
+            <s>{formatLevel(test.parDb, locale)}</s>
+          ) : (
+            <b>{formatLevel(test.parDb, locale)}</b>
+          )}
+          <span className="beneath">
+            {notRatedWord(i18n, test) ?? i18n.t("at {pct} %", { pct: test.confidencePct })}
+          </span>
         </span>
       ),
     },
@@ -104,16 +116,13 @@ export function FitTestsTable({
       head: i18n.t("What it says"),
       cell: (test) => (
         <span className="two-lines">
-          <span className={test.hasPassed === false && !test.isVoid ? "is-fault" : undefined}>
-            {test.isVoid ? "–" : passWord(i18n, test.hasPassed)}
+          <span className={isFault(test) ? "is-fault" : undefined}>
+            {test.isVoid ? "–" : saysWord(i18n, test)}
           </span>
           <span className="beneath">
             {[
               outcomeWord(i18n, test),
-              test.activePassed !== null &&
-                (test.activePassed
-                  ? i18n.t("active part passed")
-                  : i18n.t("active part not passed")),
+              test.activePassed !== null && test.parDb !== null && activeWord(i18n, test),
               test.dueOn !== null &&
                 i18n.t("again by {date}", { date: formatShortDate(test.dueOn, locale) }),
             ]
@@ -134,14 +143,16 @@ export function FitTestsTable({
                 {actions?.(test)}
                 {test.can.change && (
                   <>
-                    <TextButton
-                      aria-label={i18n.t("Correct the fit of {protector}", {
-                        protector: test.modelName,
-                      })}
-                      onClick={() => setChanging({ id: test.id, how: "correct" })}
-                    >
-                      {i18n.t("Correct")}
-                    </TextButton>
+                    {test.parDb !== null && (
+                      <TextButton
+                        aria-label={i18n.t("Correct the fit of {protector}", {
+                          protector: test.modelName,
+                        })}
+                        onClick={() => setChanging({ id: test.id, how: "correct" })}
+                      >
+                        {i18n.t("Correct")}
+                      </TextButton>
+                    )}
                     <TextButton
                       aria-label={i18n.t("Strike out the fit of {protector}", {
                         protector: test.modelName,

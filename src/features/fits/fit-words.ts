@@ -1,4 +1,5 @@
 import type { I18n } from "@lingui/core";
+import { startsSentence } from "../../../shared/format/words";
 import type {
   Candidate,
   FitMethod,
@@ -6,7 +7,7 @@ import type {
   IssueView,
   RefusalInput,
 } from "../../../shared/schemas/fit";
-import { gearWord } from "../../lib/register-words";
+import { gearWord, passWord } from "../../lib/register-words";
 
 export function fitMethodWord(i18n: I18n, method: FitMethod): string {
   switch (method) {
@@ -23,6 +24,25 @@ export function outcomeWord(i18n: I18n, { isVoid, outcome }: FitTestView): strin
   if (isVoid) return i18n.t("struck out");
   return outcome === "issued" ? i18n.t("issued") : i18n.t("tried");
 }
+
+/** Why a test has no rating; null: it has one. Then only the active part was checked, and there is no trial. */
+export function notRatedWord(i18n: I18n, { parDb, facts }: FitTestView): string | null {
+  if (parDb !== null) return null;
+  const isRelative = [facts.bands?.left, facts.bands?.right].some((ear) => ear?.isRelative);
+  return isRelative ? i18n.t("relative analysis only") : i18n.t("not rated");
+}
+
+export const activeWord = (i18n: I18n, { activePassed }: FitTestView): string =>
+  activePassed ? i18n.t("active part passed") : i18n.t("active part not passed");
+
+/** Whether it fits; of a test that only checked the active part, whether that does its work. */
+export const saysWord = (i18n: I18n, test: FitTestView): string =>
+  test.parDb === null && test.activePassed !== null
+    ? startsSentence(activeWord(i18n, test))
+    : passWord(i18n, test.hasPassed);
+
+export const isFault = ({ isVoid, hasPassed, parDb, activePassed }: FitTestView): boolean =>
+  !isVoid && (hasPassed === false || (parDb === null && activePassed === false));
 
 export function endedWord(i18n: I18n, how: NonNullable<IssueView["endedHow"]>): string {
   switch (how) {
@@ -90,6 +110,8 @@ export function decidedWord(i18n: I18n, decidedBy: Candidate["decidedBy"]): stri
       return i18n.t("by what is worn with it");
     case "adequacy":
       return i18n.t("by its word while worn");
+    case "overprotection":
+      return i18n.t("enough, but by EN 458 it protects too much");
     case "margin":
       return i18n.t("by the margin at the ear");
     case "fit":

@@ -33,45 +33,62 @@ export function ImportReportView({ report }: { report: ImportReport }) {
           {i18n.t("The file changes what is recorded already. Say why above, then look again.")}
         </p>
       )}
-      {faults.length > 0 && (
-        <>
-          <DataTable<ImportIssue>
-            caption={i18n.t("What stands in the way")}
-            rows={faults}
-            rowKey={(issue) => `${issue.line} ${issue.field} ${issue.code}`}
-            columns={[
-              {
-                id: "line",
-                head: i18n.t("Line"),
-                kind: "figure",
-                widthPx: 56,
-                isRowHead: true,
-                sortValue: ({ line }) => line,
-                cell: ({ line }) => line,
-              },
-              {
-                id: "field",
-                head: i18n.t("Column"),
-                sortValue: ({ field }) => field,
-                cell: ({ field }) => <span className="mono">{field}</span>,
-              },
-              {
-                id: "what",
-                head: i18n.t("What is wrong, and how to mend it"),
-                sortValue: ({ code }) => code,
-                cell: (issue) => importIssueText(i18n, issue),
-              },
-            ]}
-          />
-          {issuesCount > issues.length && (
-            <p className="table-foot">
-              {i18n.t("The first {shown} of {all} are listed.", {
-                shown: issues.length,
-                all: formatNumber(issuesCount, 0, locale),
-              })}
-            </p>
-          )}
-        </>
+      <IssuesTable issues={faults} hidden={issuesCount - issues.length} count={issuesCount} />
+    </>
+  );
+}
+
+/** What stands in the way of a file, line by line. */
+export function IssuesTable({
+  issues,
+  hidden,
+  count,
+}: {
+  issues: readonly ImportIssue[];
+  /** How many are not among them. */
+  hidden: number;
+  count: number;
+}) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  if (issues.length === 0) return null;
+  return (
+    <>
+      <DataTable<ImportIssue>
+        caption={i18n.t("What stands in the way")}
+        rows={issues}
+        rowKey={(issue) => `${issue.line} ${issue.field} ${issue.code}`}
+        columns={[
+          {
+            id: "line",
+            head: i18n.t("Line"),
+            kind: "figure",
+            widthPx: 56,
+            isRowHead: true,
+            sortValue: ({ line }) => line,
+            cell: ({ line }) => line,
+          },
+          {
+            id: "field",
+            head: i18n.t("Column"),
+            sortValue: ({ field }) => field,
+            cell: ({ field }) => <span className="mono">{field}</span>,
+          },
+          {
+            id: "what",
+            head: i18n.t("What is wrong, and how to mend it"),
+            sortValue: ({ code }) => code,
+            cell: (issue) => importIssueText(i18n, issue),
+          },
+        ]}
+      />
+      {hidden > 0 && (
+        <p className="table-foot">
+          {i18n.t("The first {shown} of {all} are listed.", {
+            shown: count - hidden,
+            all: formatNumber(count, 0, locale),
+          })}
+        </p>
       )}
     </>
   );

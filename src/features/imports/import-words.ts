@@ -92,6 +92,20 @@ export function importIssueText(i18n: I18n, issue: ImportIssue): string {
       return i18n.t(
         "The site has no task of that name. Write it letter by letter, or add the task first.",
       );
+    case "job-unknown":
+      return i18n.t(
+        "The site has no job of that name. Write it letter by letter, or leave the cell empty.",
+      );
+    case "worker-of-another-site":
+      return i18n.t("Somebody of another site has this number, and that site is not yours.");
+    case "left-already":
+      return i18n.t(
+        "By the record this worker has left. Take the line out, or change the last day on the worker’s own page.",
+      );
+    case "crew-later-already":
+      return i18n.t(
+        "This worker has a membership from that day on or later. Change it on the crew’s own page.",
+      );
     case "crew-unknown":
       return i18n.t(
         "The site has no crew of that name. Write it letter by letter, or leave the cell empty.",

@@ -1,5 +1,6 @@
 import { useMutation } from "@tanstack/react-query";
 import { type ImportKind, ImportReport } from "../../../shared/schemas/import";
+import { RosterReport } from "../../../shared/schemas/roster";
 import { ApiError, api } from "../../lib/api";
 import { useChangeKey } from "../../lib/change-key";
 
@@ -15,13 +16,17 @@ export class FileChanged extends Error {
   override readonly name = "FileChanged";
 }
 
-async function send({ kind, siteId, file, reason }: ImportOrder, isDryRun: boolean, key?: string) {
+async function checkReadable(file: File): Promise<void> {
   await file
     .slice(0, 1)
     .arrayBuffer()
     .catch(() => {
       throw new FileChanged();
     });
+}
+
+async function send({ kind, siteId, file, reason }: ImportOrder, isDryRun: boolean, key?: string) {
+  await checkReadable(file);
   const body = new FormData();
   body.set("file", file);
   if (reason.trim() !== "") body.set("reason", reason.trim());
@@ -58,5 +63,66 @@ export function useImport(onImported: (report: ImportReport) => void) {
 export function reportOf(error: unknown): ImportReport | null {
   if (!(error instanceof ApiError) || error.code !== "import-refused") return null;
   const parsed = ImportReport.safeParse((error.body as { report?: unknown }).report);
+  return parsed.success ? parsed.data : null;
+}
+
+export interface RosterOrder {
+  readonly siteId: string;
+  readonly file: File;
+  /** The file is the whole roster: whoever is missing left on this date. */
+  readonly missingLeftOn: string | null;
+  readonly confirmedLeavers: number | null;
+}
+
+async function sendRoster(
+  { siteId, file, missingLeftOn, confirmedLeavers }: RosterOrder,
+  isDryRun: boolean,
+  key?: string,
+) {
+  await checkReadable(file);
+  const body = new FormData();
+  body.set("file", file);
+  if (missingLeftOn !== null) body.set("missingLeftOn", missingLeftOn);
+  if (confirmedLeavers !== null) body.set("confirmedLeavers", String(confirmedLeavers));
+  return api.post("/roster-imports", {
+    query: { siteId, dryRun: isDryRun },
+    body,
+    schema: RosterReport,
+    idempotencyKey: key,
+  });
+}
+
+/** Who would join, change and leave; stores nothing. */
+export function useRosterDryRun() {
+  return useMutation({ mutationFn: (order: RosterOrder) => sendRoster(order, true) });
+}
+
+/** All of the roster, or nothing of it. */
+export function useRosterImport(onImported: (report: RosterReport) => void) {
+  const changeKey = useChangeKey();
+  return useMutation({
+    mutationFn: (order: RosterOrder) => {
+      const { siteId, file, missingLeftOn, confirmedLeavers } = order;
+      const facts = [
+        siteId,
+        file.name,
+        file.size,
+        file.lastModified,
+        missingLeftOn,
+        confirmedLeavers,
+      ];
+      return sendRoster(order, false, changeKey.keyFor(facts));
+    },
+    onSuccess: (report) => {
+      changeKey.forget();
+      onImported(report);
+    },
+  });
+}
+
+/** A refused roster brings its report: something changed between look and import. */
+export function rosterReportOf(error: unknown): RosterReport | null {
+  if (!(error instanceof ApiError)) return null;
+  const parsed = RosterReport.safeParse((error.body as { report?: unknown } | null)?.report);
   return parsed.success ? parsed.data : null;
 }

@@ -20,13 +20,17 @@ export function CheckResult({
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  const { parDb, methodSdDb, warnings } = analysis;
+  const { parDb, methodSdDb, warnings, ear } = analysis;
   const active = activeText(i18n, analysis, locale);
   return (
     <>
       <p className="check-figure">
         {parDb === null ? (
-          <span className="not-assessed">{i18n.t("No rating comes of it.")}</span>
+          <span className="not-assessed">
+            {ear.isRelative
+              ? i18n.t("Relative analysis only: no rating comes of it.")
+              : i18n.t("No rating comes of it.")}
+          </span>
         ) : (
           <>
             <b className="check-par">{formatLevel(parDb, locale)} dB</b>{" "}
@@ -43,7 +47,7 @@ export function CheckResult({
       )}
       {warnings.map((code) => (
         <p key={code} className="check-caution">
-          {warningText(i18n, code)}
+          {warningText(i18n, code, ear.isRelative)}
         </p>
       ))}
       {children}

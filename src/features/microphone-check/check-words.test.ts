@@ -9,7 +9,7 @@ const noBands = Array<null>(8).fill(null);
 const analysis = (active: CheckAnalysis["active"]): CheckAnalysis => ({
   isAbsolute: false,
   parts: [],
-  ear: { noiseReductionDb: noBands, attenuationDb: noBands, activeDb: null },
+  ear: { noiseReductionDb: noBands, attenuationDb: noBands, activeDb: null, isRelative: false },
   parDb: null,
   methodSdDb: 3,
   active,

@@ -81,12 +81,16 @@ export function failureText(i18n: I18n, code: string, params: Params, locale: Lo
 }
 
 /** What an analysis cautions of. */
-export function warningText(i18n: I18n, code: CheckCode): string {
+export function warningText(i18n: I18n, code: CheckCode, isRelative: boolean): string {
   switch (code) {
     case "channels-swapped":
-      return i18n.t(
-        "It is louder inside than outside in every band: the channels are probably the other way round.",
-      );
+      return isRelative
+        ? i18n.t(
+            "It is louder inside than outside in every band. Without a calibration the microphone inside may only be the more sensitive one; were the channels the other way round, the check would fail for that alone.",
+          )
+        : i18n.t(
+            "It is louder inside than outside in every band: the channels are probably the other way round.",
+          );
     case "no-common-noise":
       return i18n.t(
         "What is inside has nothing in common with what is outside, in no band. Was there noise, and do both recordings belong together?",
@@ -184,7 +188,7 @@ export function calibrationWord(i18n: I18n, { kind }: MicrophoneCheckView["calib
     case "sensitivity":
       return i18n.t("Known sensitivities");
     case "alike":
-      return i18n.t("Not calibrated; side by side they showed the same level");
+      return i18n.t("Not calibrated; side by side they showed the same level.");
     case "none":
       return i18n.t("None: relative only");
     case "typed":

@@ -45,7 +45,10 @@ export function ChecksTable({
           head: i18n.t("Rating"),
           unit: "dB",
           kind: "figure",
-          cell: ({ analysis }) => formatLevel(analysis?.parDb ?? null, locale),
+          cell: ({ analysis }) =>
+            analysis?.ear.isRelative
+              ? i18n.t("relative only")
+              : formatLevel(analysis?.parDb ?? null, locale),
         },
       ]}
     />

@@ -31,6 +31,7 @@ export function KeepCheckForm({
   sizes,
   needDb,
   others,
+  isRated,
   onKept,
   onCancel,
 }: {
@@ -42,6 +43,8 @@ export function KeepCheckForm({
   needDb: number | null;
   /** Tests of the same protector that lack this ear, each with its day. */
   others: readonly (Choice & { readonly testedOn: string })[];
+  /** A rating was found; else only whether the active part does its work is kept. */
+  isRated: boolean;
   onKept: (view: MicrophoneCheckView) => void;
   onCancel: () => void;
 }) {
@@ -51,7 +54,7 @@ export function KeepCheckForm({
     defaultValues: {
       testedOn: first?.testedOn ?? today,
       size: null,
-      needDb,
+      needDb: isRated ? needDb : null,
       joinFitTestId: first?.value ?? null,
     },
   });
@@ -65,6 +68,13 @@ export function KeepCheckForm({
   );
   return (
     <Form aria-label={i18n.t("Keep as a fit test")} onSubmit={submit}>
+      {!isRated && (
+        <p>
+          {i18n.t(
+            "Only the check of the active part is kept: no rating comes of it, and the fit that counts stays what it was.",
+          )}
+        </p>
+      )}
       {others.length > 0 && (
         <SelectField
           form={form}
@@ -88,14 +98,16 @@ export function KeepCheckForm({
               isOptional
             />
           )}
-          <NumberField
-            form={form}
-            name="needDb"
-            label={i18n.t("Needed at this worker’s place")}
-            unit="dB"
-            note={i18n.t("What the fit has to reach. Empty: there is nothing to pass.")}
-            isOptional
-          />
+          {isRated && (
+            <NumberField
+              form={form}
+              name="needDb"
+              label={i18n.t("Needed at this worker’s place")}
+              unit="dB"
+              note={i18n.t("What the fit has to reach. Empty: there is nothing to pass.")}
+              isOptional
+            />
+          )}
         </>
       )}
       <FormProblem error={keep.error} />

@@ -3,7 +3,7 @@ import { activeAttenuationDb, breakEvenHz } from "../../../shared/acoustics/prot
 import { OCTAVE_BANDS_HZ } from "../../../shared/acoustics/types";
 import { formatDuration } from "../../../shared/format/duration";
 import { formatLevel, formatLevelWithUnit } from "../../../shared/format/level";
-import { editNumber, formatNumber, NO_FIGURE } from "../../../shared/format/number";
+import { editNumber, fieldNumber, formatNumber, NO_FIGURE } from "../../../shared/format/number";
 import type { ProtectorFacts } from "../../../shared/schemas/evaluation";
 import { BandPicture } from "../../components/band-picture";
 import { DataTable } from "../../components/data-table";
@@ -24,8 +24,8 @@ export function ActivePart({ active }: { active: NonNullable<ProtectorFacts["act
         active.attenuationDb !== null
           ? i18n.t("its test report, by octave band")
           : delayS !== null && gain !== null
-            ? i18n.t("delay {delay} s and gain {gain}", {
-                delay: editNumber(delayS, locale),
+            ? i18n.t("delay {delay} µs and gain {gain}", {
+                delay: fieldNumber(delayS * 1e6, locale),
                 gain: editNumber(gain, locale),
               })
             : null,

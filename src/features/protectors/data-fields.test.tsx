@@ -125,6 +125,42 @@ test("means and deviations can be taken from the subjects", async () => {
   );
 });
 
+test("one bad deviation marks its own cell, and the sentence says which", async () => {
+  const sdDb = [...same(2)];
+  sdDb[3] = -2;
+  const onSave = show({ data: { bands: { meanDb: same(25), sdDb } } });
+  await save();
+  expect(screen.getByText(/^500 Hz: A standard deviation can’t be negative/)).toBeTruthy();
+  const marked = [...document.querySelectorAll('.band-input[aria-invalid="true"]')];
+  expect(marked).toEqual([screen.getAllByLabelText("Standard deviation, 500 Hz")[0]]);
+  expect(onSave).not.toHaveBeenCalled();
+}, 15_000);
+
+test("a delay is typed in µs, and goes out in seconds", async () => {
+  const active = {
+    attenuationDb: null,
+    delayS: 0.00012,
+    gain: 0.9,
+    maximumDb: null,
+    bandwidthHz: 1000,
+    saturatesAboveDb: null,
+    batteryMin: null,
+  };
+  const onSave = show({ kind: "active-earmuff", data: { active } });
+  const delay = cell(/^Delay/);
+  expect((delay as HTMLInputElement).value).toBe("120");
+  await userEvent.clear(delay);
+  await userEvent.type(delay, "200000");
+  await save();
+  expect(screen.getByText(/at most a tenth of a second/)).toBeTruthy();
+  await userEvent.clear(delay);
+  await userEvent.type(delay, "50");
+  await save();
+  expect(onSave).toHaveBeenCalledWith(
+    expect.objectContaining({ active: { ...active, delayS: 0.00005 } }),
+  );
+}, 15_000);
+
 test("only what a kind can have is asked for", () => {
   show({ kind: "foam-plug" });
   expect(screen.queryByText("It cancels noise electronically")).toBeNull();

@@ -81,9 +81,10 @@ function ActiveFields({ form }: { form: ProtectorForm }) {
             form={form}
             name="data.active.delayS"
             label={i18n.t("Delay")}
-            unit="s"
+            unit="µs"
+            factor={1e6}
             isOptional
-            note={i18n.t("Of the canceller; 50 µs is 0.00005.")}
+            note={i18n.t("Of the canceller.")}
           />
           <NumberField
             form={form}

@@ -153,6 +153,10 @@ function AttachForm({ modelId, onDone }: { modelId: string; onDone: () => void }
         label={i18n.t("File, PDF or photograph")}
         accept="application/pdf,image/*"
         atMost={1}
+        isOptional={false}
+        fault={
+          fileError?.type === "invalid_format" ? i18n.t("Choose a file first.") : fileError?.message
+        }
         files={sent}
         onFiles={(files) => {
           const [file] = files;
@@ -162,11 +166,6 @@ function AttachForm({ modelId, onDone }: { modelId: string; onDone: () => void }
             form.setValue("title", file.name.replace(/\.[a-z\d]+$/i, ""), { shouldDirty: true });
         }}
       />
-      {fileError && (
-        <p className="field-error" role="alert">
-          {fileError.type === "invalid_format" ? i18n.t("Choose a file first.") : fileError.message}
-        </p>
-      )}
       <TextField form={form} name="title" label={i18n.t("Title")} />
       <FormProblem error={attach.error} />
       <FormActions>

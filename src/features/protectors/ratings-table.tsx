@@ -19,9 +19,14 @@ function byWord(i18n: I18n, { by, rating }: RatingComparison): string {
     case "us-label":
       return i18n.t("US test data");
     case null:
-      return rating === "us"
-        ? i18n.t("needs third-octaves at 3150 and 6300 Hz")
-        : i18n.t("needs octave bands");
+      switch (rating) {
+        case "us":
+          return i18n.t("needs third-octaves at 3150 and 6300 Hz");
+        case "slc80":
+          return i18n.t("taken from the label");
+        default:
+          return i18n.t("needs octave bands");
+      }
   }
 }
 
@@ -40,8 +45,7 @@ export function RatingsTable({
       ratings.filter(({ isAtOdds }) => isAtOdds).map(({ rating }) => ratingWord(i18n, rating)),
     ),
   ];
-  const slc80 = ratings.find(({ rating }) => rating === "slc80");
-  const slc80Db = slc80?.labelDb ?? slc80?.recomputedDb ?? null;
+  const slc80Db = ratings.find(({ rating }) => rating === "slc80")?.labelDb ?? null;
   const ofSlc80 = slc80Db === null ? null : australianClass(slc80Db);
   const isOtherClass = auClass !== null && slc80Db !== null && ofSlc80 !== auClass;
   return (
@@ -59,7 +63,9 @@ export function RatingsTable({
             cell: (one) => (
               <span className="two-lines">
                 {ratingWord(i18n, one.rating)}
-                <span className={`beneath${one.by === null ? " not-assessed" : ""}`}>
+                <span
+                  className={`beneath${one.by === null && one.rating !== "slc80" ? " not-assessed" : ""}`}
+                >
                   {byWord(i18n, one)}
                 </span>
               </span>

@@ -1,8 +1,9 @@
 import { useLingui } from "@lingui/react";
-import { useQueryClient } from "@tanstack/react-query";
-import { useState } from "react";
+import { keepPreviousData, useQuery, useQueryClient } from "@tanstack/react-query";
+import { useDeferredValue, useState } from "react";
 import { z } from "zod";
-import { CONFIDENCE_PCT, FitPolicyInput } from "../../../shared/schemas/fit";
+import { formatShortDate } from "../../../shared/format/date";
+import { CONFIDENCE_PCT, FitPolicyInput, FitPolicyPreview } from "../../../shared/schemas/fit";
 import { SiteView } from "../../../shared/schemas/site";
 import { Button } from "../../components/button";
 import { ConflictDialog } from "../../components/conflict-dialog";
@@ -16,6 +17,9 @@ import {
   useSchemaForm,
 } from "../../components/form";
 import { FormProblem } from "../../components/form-problem";
+import { Status } from "../../components/status";
+import { api } from "../../lib/api";
+import { useLocale } from "../../lib/i18n";
 import { useRevisedSave } from "../../lib/revised-save";
 import { ruleQueries } from "./queries";
 
@@ -26,7 +30,7 @@ const Fields = FitPolicyInput.omit({ confidencePct: true }).extend({ confidence:
 export function FitPolicy({ site }: { site: SiteView }) {
   const { i18n } = useLingui();
   const [isOpen, setIsOpen] = useState(false);
-  const { confidencePct, everyMonths, afterFailDays } = site.fitPolicy;
+  const { confidencePct, everyMonths, afterFailDays, firstDays } = site.fitPolicy;
   if (isOpen) return <PolicyForm site={site} onDone={() => setIsOpen(false)} />;
   return (
     <>
@@ -46,6 +50,11 @@ export function FitPolicy({ site }: { site: SiteView }) {
           i18n.t(
             "After a fail, a refit or with a new device {days, plural, one {within # day} other {within # days}}.",
             { days: afterFailDays },
+          )}{" "}
+        {(everyMonths !== null || afterFailDays !== null) &&
+          i18n.t(
+            "A device never tested on its wearer has its test {days, plural, one {within # day} other {within # days}}.",
+            { days: firstDays },
           )}
       </p>
       {site.can.changeRules && (
@@ -62,10 +71,11 @@ const toBody = ({ fitPolicy }: SiteView): FitPolicyInput => fitPolicy;
 function PolicyForm({ site, onDone }: { site: SiteView; onDone: () => void }) {
   const { i18n } = useLingui();
   const client = useQueryClient();
-  const { confidencePct, everyMonths, afterFailDays } = site.fitPolicy;
+  const { confidencePct, everyMonths, afterFailDays, firstDays } = site.fitPolicy;
   const form = useSchemaForm(Fields, {
-    defaultValues: { confidence: String(confidencePct), everyMonths, afterFailDays },
+    defaultValues: { confidence: String(confidencePct), everyMonths, afterFailDays, firstDays },
   });
+  const filled = FitPolicyInput.safeParse({ ...form.watch(), confidencePct });
   const { save, isSaving, error, conflict, leaveConflict } = useRevisedSave<
     FitPolicyInput,
     SiteView
@@ -116,8 +126,18 @@ function PolicyForm({ site, onDone }: { site: SiteView; onDone: () => void }) {
           label={i18n.t("Sooner, within")}
           unit={i18n.t("days")}
           isOptional
-          note={i18n.t("After a fail, a refit, or a device that was never tested on its wearer.")}
+          note={i18n.t("After a fail, a refit, or with a new device in place of a tested one.")}
         />
+        <NumberField
+          form={form}
+          name="firstDays"
+          label={i18n.t("The first test within")}
+          unit={i18n.t("days")}
+          note={i18n.t(
+            "Of the day on which a device was given. Who has one already gets a date within as many days from now, spread over them. 90 days: common practice, no source.",
+          )}
+        />
+        <WhatFallsDue siteId={site.id} policy={filled.data} />
         <FormProblem error={error} />
         <FormActions>
           <SubmitButton isBusy={isSaving}>{i18n.t("Save")}</SubmitButton>
@@ -141,6 +161,11 @@ function PolicyForm({ site, onDone }: { site: SiteView; onDone: () => void }) {
               show: (body) => shown(body.everyMonths),
             },
             {
+              key: "firstDays",
+              label: i18n.t("Days to the first test"),
+              show: (body) => shown(body.firstDays),
+            },
+            {
               key: "afterFailDays",
               label: i18n.t("Days after a fail"),
               show: (body) => shown(body.afterFailDays),
@@ -156,5 +181,50 @@ function PolicyForm({ site, onDone }: { site: SiteView; onDone: () => void }) {
         />
       )}
     </>
+  );
+}
+
+/** Said before it is saved: whose tests would be due at once, and when those of the others. */
+function WhatFallsDue({ siteId, policy }: { siteId: string; policy: FitPolicyInput | undefined }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const asked = useDeferredValue(policy);
+  const { data, error } = useQuery({
+    queryKey: ["fits", "policy-preview", siteId, asked],
+    queryFn: ({ signal }) =>
+      api.post(`/sites/${siteId}/fit-policy/preview`, {
+        body: asked ?? {},
+        schema: FitPolicyPreview,
+        signal,
+      }),
+    enabled: asked !== undefined,
+    placeholderData: keepPreviousData,
+  });
+  if (error) return <FormProblem error={error} />;
+  const { untestedFrom, untestedTo } = data ?? {};
+  return (
+    <p className="policy-due">
+      <Status>
+        {data &&
+          [
+            i18n.t(
+              "{count, plural, =0 {No test of fit is due at once by this.} one {One test of fit is due at once by this.} other {# tests of fit are due at once by this.}}",
+              { count: data.dueNowCount },
+            ),
+            untestedFrom &&
+              untestedTo &&
+              i18n.t(
+                "{count, plural, one {One wearer who was never tested becomes due} other {# wearers who were never tested become due}} later, between {from} and {to}.",
+                {
+                  count: data.untestedCount,
+                  from: formatShortDate(untestedFrom, locale),
+                  to: formatShortDate(untestedTo, locale),
+                },
+              ),
+          ]
+            .filter(Boolean)
+            .join(" ")}
+      </Status>
+    </p>
   );
 }

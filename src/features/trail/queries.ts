@@ -1,6 +1,7 @@
-import { infiniteQueryOptions } from "@tanstack/react-query";
+import { infiniteQueryOptions, queryOptions } from "@tanstack/react-query";
 import type { z } from "zod";
 import type { AuditEventPage } from "../../../shared/schemas/audit-event";
+import type { TrailState } from "../../../shared/schemas/trail-check";
 import { api } from "../../lib/api";
 import { ownReply } from "../../lib/own-reply";
 
@@ -20,4 +21,13 @@ export const trailQuery = (filter: TrailFilter) =>
       }),
     initialPageParam: null as string | null,
     getNextPageParam: ({ next }) => next,
+  });
+
+/** Head, tail and what there is to check: asked anew whenever somebody looks. */
+export const trailStateQuery = () =>
+  queryOptions({
+    queryKey: ["trail", "check"],
+    queryFn: ({ signal }) =>
+      api.get("/trail-check", { schema: ownReply<TrailState>("tail", "tables"), signal }),
+    staleTime: 0,
   });

@@ -10,6 +10,7 @@ export const SUBJECT_KINDS = [
   "run",
   "finding",
   "notice",
+  "letter",
   "protector",
   "instrument",
   "area",
@@ -26,6 +27,8 @@ export const SUBJECT_KINDS = [
   "protector-issue",
   "wearing-round",
   "warning-signal",
+  "training",
+  "plan",
 ] as const;
 export type SubjectKind = (typeof SUBJECT_KINDS)[number];
 
@@ -50,6 +53,8 @@ export function subjectWord(i18n: I18n, kind: string): string {
       return i18n.t("Finding");
     case "notice":
       return i18n.t("Notice");
+    case "letter":
+      return i18n.t("Letter of results");
     case "protector":
       return i18n.t("Protector");
     case "instrument":
@@ -82,6 +87,10 @@ export function subjectWord(i18n: I18n, kind: string): string {
       return i18n.t("Wearing round");
     case "warning-signal":
       return i18n.t("Warning signal");
+    case "training":
+      return i18n.t("Training");
+    case "plan":
+      return i18n.t("Plan");
     default:
       return kind;
   }
@@ -106,6 +115,10 @@ export function actionWord(i18n: I18n, action: string): string {
       return i18n.t("Data sheet taken off");
     case "add-protector-combination":
       return i18n.t("Data of two worn together entered");
+    case "keep-plan":
+      return i18n.t("Plan kept");
+    case "put-plan-aside":
+      return i18n.t("Plan put aside");
     case "add-site-settings":
       return i18n.t("Rules changed");
     case "add-task-level":
@@ -126,6 +139,10 @@ export function actionWord(i18n: I18n, action: string): string {
       return i18n.t("Access ended");
     case "set-own-language":
       return i18n.t("Own language chosen");
+    case "export-year-records":
+      return i18n.t("Year’s records taken as a ZIP");
+    case "finish-year-records":
+      return i18n.t("Year’s ZIP written to its end");
     case "export-year":
       return i18n.t("Year file taken");
     case "start-outing":
@@ -247,8 +264,38 @@ export function actionWord(i18n: I18n, action: string): string {
       return i18n.t("Reopened");
     case "close-finding":
       return i18n.t("Closed");
+    case "record-training":
+      return i18n.t("Training entered");
+    case "change-training":
+      return i18n.t("Training put right");
+    case "strike-training":
+      return i18n.t("Training struck out");
+    case "hand-over-finding":
+      return i18n.t("Handed over");
+    case "escalate-finding":
+      return i18n.t("Overdue: went up to a named person");
+    case "send-escalation":
+      return i18n.t("Mail about overdue findings sent");
+    case "set-escalation":
+      return i18n.t("Whom overdue findings go up to changed");
+    case "record-measure":
+      return i18n.t("Measure entered");
+    case "change-measure":
+      return i18n.t("Measure changed");
+    case "strike-measure":
+      return i18n.t("Measure struck out");
+    case "attach-finding-file":
+      return i18n.t("Paper attached");
+    case "remove-finding-file":
+      return i18n.t("Paper taken off");
     case "comment-finding":
       return i18n.t("Comment");
+    case "import-roster":
+      return i18n.t("Roster imported");
+    case "write-result-letter":
+      return i18n.t("Letter written");
+    case "acknowledge-letter":
+      return i18n.t("Letter acknowledged");
     case "send-notice":
       return i18n.t("Sent");
     case "hold-notice":

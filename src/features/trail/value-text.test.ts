@@ -69,7 +69,7 @@ describe("a value of the trail reads as it does on the other screens", () => {
     expect(text("wornPct", 95)).toBe("95 %");
     expect(text("lengthMin", 450)).toBe("7 h 30 min");
     expect(text("durationMin", 0.5)).toBe("0.5 min");
-    expect(text("delayS", 0.0002)).toBe("0.0002 s");
+    expect(text("delayS", 0.0002)).toBe("200 µs");
     expect(text("year", 2026)).toBe("2026");
     expect(text("octaveBandsDb", [null, 80, 81.5, 82, 80, 78, 75, 70])).toBe(
       "– 80 81.5 82 80 78 75 70 dB",

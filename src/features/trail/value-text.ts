@@ -3,7 +3,7 @@ import type { LevelMetric, MeterSettings, Unaccounted } from "../../../shared/ac
 import { findingStateWord, findingWord } from "../../../shared/findings/words";
 import { formatDate, formatInstant, formatShortDate } from "../../../shared/format/date";
 import { formatDuration } from "../../../shared/format/duration";
-import { editNumber, NO_FIGURE } from "../../../shared/format/number";
+import { editNumber, fieldNumber, NO_FIGURE } from "../../../shared/format/number";
 import { isLocale, LOCALE_NAMES, type Locale } from "../../../shared/i18n/index";
 import { isolate } from "../../../shared/i18n/isolate";
 import { RULE_SETS } from "../../../shared/rule-sets/index";
@@ -75,6 +75,8 @@ export function valueText(words: ValueWords, field: string, value: unknown): str
 
 /** A trail rounds nothing: all stored digits. */
 function numberText(field: string, value: number, locale: Locale): string {
+  // The only time that screens show in µs.
+  if (field === "delayS") return `${fieldNumber(value * 1e6, locale)}\u00a0µs`;
   const figure = field === "year" ? String(value) : editNumber(value, locale);
   if (field.endsWith("Db")) return `${figure}\u00a0dB`;
   if (field.endsWith("Pct")) return `${figure}\u00a0%`;

@@ -17,6 +17,7 @@ import {
 import { FindingDue } from "../../components/finding-due";
 import { FindingWords } from "../../components/finding-words";
 import { TextLink } from "../../components/link";
+import { useKeepFindingOrder } from "../../lib/finding-order";
 import { useLocale } from "../../lib/i18n";
 import { paths } from "../../paths";
 import type { DueGroup, WaitingItem } from "./due";
@@ -86,6 +87,9 @@ export function WaitingTable({
   const locale = useLocale();
   const days = useMemo(() => items.map(({ finding }) => finding.figures), [items]);
   const frame = useTableFrame(days);
+  useKeepFindingOrder(
+    items.flatMap(({ finding, also }) => [finding.id, ...also.map(({ id }) => id)]),
+  );
   const columns: DataColumn<WaitingItem>[] = [
     {
       id: "due",
@@ -103,7 +107,10 @@ export function WaitingTable({
           <TextLink className="is-quiet" to={paths.finding(finding.id)}>
             {findingWord(i18n, finding.kind)}
           </TextLink>
-          <span className="beneath">{findingStateWord(i18n, finding.state)}</span>
+          <span className="beneath">
+            {findingStateWord(i18n, finding.state)}
+            {finding.wentUp && `; ${i18n.t("went up to {name}", { name: finding.wentUp.name })}`}
+          </span>
           {also.map((other) => (
             <TextLink key={other.id} className="is-quiet beneath" to={paths.finding(other.id)}>
               {i18n.t("and {what}", {

@@ -4,6 +4,7 @@ import type { Gap } from "./queries";
 const ALL: Readonly<Record<Gap, true>> = {
   "not-measured": true,
   "no-protector": true,
+  "not-trained": true,
   "notice-late": true,
   "notice-not-sent": true,
   "not-assessed": true,
@@ -17,6 +18,8 @@ export function gapWord(i18n: I18n, kind: Gap): string {
       return i18n.t("In noise but not measured");
     case "no-protector":
       return i18n.t("No protector where one is required");
+    case "not-trained":
+      return i18n.t("Not trained");
     case "notice-late":
       return i18n.t("Notices late");
     case "notice-not-sent":
@@ -33,6 +36,8 @@ export function gapMeaning(i18n: I18n, kind: Gap): string {
       return i18n.t("people over 80 dB by a task’s level or an estimate, with no run of their own");
     case "no-protector":
       return i18n.t("people whose finding is open");
+    case "not-trained":
+      return i18n.t("people to whom the rules owe training, and none within their interval");
     case "notice-late":
       return i18n.t("somebody was told after more than a day");
     case "notice-not-sent":

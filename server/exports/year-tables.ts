@@ -1,0 +1,429 @@
+import { type Actor, visible } from "../lib/policy";
+import {
+  assignmentPolicy,
+  dayPolicy,
+  findingPolicy,
+  fitPolicy,
+  noticePolicy,
+  protectorPolicy,
+  runPolicy,
+  shiftPolicy,
+  siteOfEvent,
+  workerPolicy,
+} from "../policies";
+import { YEAR_COLUMNS, type YearColumn } from "./year-columns";
+
+export type WorkersAs = "number" | "name" | "pseudonym";
+
+export interface YearRecords {
+  siteId: string;
+  year: number;
+  workers: WorkersAs;
+  /** Hex; under it the names made up for one file are the same in all its tables, and others in the next. */
+  salt: string;
+}
+
+export interface YearTable {
+  name: string;
+  title: string;
+  columns: readonly YearColumn[];
+  /** From FROM on. */
+  rest: string;
+  key: readonly string[];
+}
+
+const uuid = /^[0-9a-f]{8}(-[0-9a-f]{4}){3}-[0-9a-f]{12}$/;
+const TIME = `'YYYY-MM-DD"T"HH24:MI:SS.US"Z"'`;
+const utc = (column: string) => `to_char(${column} AT TIME ZONE 'UTC', ${TIME})`;
+
+const column =
+  (type: YearColumn["type"], unit = "") =>
+  (name: string, sql: string, meaning: string): YearColumn => ({ name, sql, type, unit, meaning });
+const id = column("id");
+const text = column("text");
+const code = column("code");
+const date = column("date");
+const time = column("time");
+const whole = column("integer");
+const yesNo = column("boolean");
+const level = column("number", "dB");
+const minutes = column("number", "min");
+const share = column("number", "%");
+const number = column("number");
+
+/** SQL: how a worker of the alias is called in the file. */
+export function workerSql(alias: string, { workers, salt }: YearRecords): string {
+  if (workers === "name") return `${alias}.name`;
+  if (workers === "number") return `${alias}.employee_number`;
+  return `'W-' || left(encode(sha256(convert_to('${salt}' || ${alias}.id::text, 'UTF8')), 'hex'), 12)`;
+}
+
+/** Every table of a year's file in its order, as far as the actor may see its rows. */
+export function yearTables(actor: Actor, asked: YearRecords): YearTable[] {
+  const { siteId, year } = asked;
+  if (!uuid.test(siteId) || !Number.isInteger(year) || !/^[0-9a-f]{32}$/.test(asked.salt))
+    throw new RangeError("a site's id, a whole year and a salt");
+  const inYear = (expression: string) =>
+    `${expression} >= '${year}-01-01' AND ${expression} <= '${year}-12-31'`;
+  const ofDays = `d.site_id = '${siteId}' AND ${inYear("d.date")} AND ${visible(dayPolicy, actor, "d")}`;
+  const isNamed = asked.workers !== "pseudonym";
+  const worker = text(
+    "worker",
+    workerSql("w", asked),
+    "How the worker is called in this file: employee number, name, or a name made up for this file",
+  );
+  /** Free text may name people: a file without names has none. */
+  const freeText = (name: string, sql: string, meaning: string) =>
+    text(name, isNamed ? sql : "NULL::text", `${meaning}; empty in a file without workers' names`);
+
+  const resultColumns = YEAR_COLUMNS.map((one) =>
+    one.name === "worker" ? { ...one, sql: worker.sql } : one,
+  );
+  return [
+    {
+      name: "workers",
+      title: "Workers with a day in the year",
+      // Two may have one name.
+      key: asked.workers === "name" ? [] : ["worker"],
+      columns: [
+        worker,
+        text("job", "j.name", "Present job"),
+        code(
+          "employer",
+          "w.employer",
+          "Whether the worker is one's own, an agency's or a contractor's",
+        ),
+        yesNo("must_wear", "w.must_wear", "Has to wear a protector whatever the level"),
+        level(
+          "personal_target_db",
+          "w.personal_target_db",
+          "A stricter target at the ear of this worker's own",
+        ),
+        date(
+          "hired_on",
+          isNamed ? "w.hired_on" : "NULL::date",
+          "First day of employment; empty in a file without workers' names",
+        ),
+        date(
+          "left_on",
+          isNamed ? "w.left_on" : "NULL::date",
+          "Last day of employment; empty in a file without workers' names",
+        ),
+      ],
+      rest: `FROM workers w LEFT JOIN jobs j ON j.id = w.job_id
+        WHERE w.id IN (SELECT d.worker_id FROM days d WHERE ${ofDays}) AND ${visible(workerPolicy, actor, "w")} ORDER BY 1`,
+    },
+    {
+      name: "shifts",
+      title: "Shifts, each revision",
+      key: ["shift_revision_id"],
+      columns: [
+        id("shift_revision_id", "v.id", "Revision of the shift: a correction is a new one"),
+        id("shift_id", "f.id", "Shift"),
+        whole("revision", "v.number", "1, 2, 3… within the shift"),
+        yesNo("is_in_force", "f.current_revision_id = v.id", "The revision that counts"),
+        worker,
+        text("crew", "c.name", "Crew with which it was worked"),
+        date("date", "f.date", "Local date on which it starts"),
+        time(
+          "local_start",
+          "to_char(v.local_start, 'HH24:MI')",
+          "Local time at which it starts, hours and minutes",
+        ),
+        code("time_zone", "f.time_zone", "IANA time zone of the local times"),
+        minutes("length_min", "v.length_min", "Length"),
+        code(
+          "unaccounted_how",
+          "v.unaccounted_how",
+          "How the time without a task was, as the officer said",
+        ),
+        level("unaccounted_level_db", "v.unaccounted_level_db", "Its level, where that was said"),
+        yesNo("is_void", "v.is_void", "Struck out"),
+        time("recorded_at", utc("v.created_at"), "When the revision was recorded, UTC"),
+        freeText("reason", "v.reason", "Why it was corrected"),
+      ],
+      rest: `FROM shifts f JOIN shift_revisions v ON v.shift_id = f.id JOIN workers w ON w.id = f.worker_id LEFT JOIN crews c ON c.id = f.crew_id
+        WHERE f.site_id = '${siteId}' AND ${inYear("f.date")} AND ${visible(shiftPolicy, actor, "f")} ORDER BY f.date, f.id, v.number`,
+    },
+    {
+      name: "shift-tasks",
+      title: "Tasks of each revision of a shift",
+      key: ["shift_task_id"],
+      columns: [
+        id("shift_task_id", "t.id", "The task within this revision"),
+        id("shift_revision_id", "t.shift_revision_id", "Revision of the shift"),
+        whole("position", "t.position", "Its place in the shift"),
+        text("task", "k.name", "Task"),
+        minutes("duration_min", "t.duration_min", "How long it was done"),
+        share(
+          "worn_pct",
+          "t.worn_pct",
+          "Share of the time for which the protector was worn; empty: not said",
+        ),
+      ],
+      rest: `FROM shifts f JOIN shift_tasks t ON t.shift_id = f.id JOIN tasks k ON k.id = t.task_id
+        WHERE f.site_id = '${siteId}' AND ${inYear("f.date")} AND ${visible(shiftPolicy, actor, "f")} ORDER BY f.date, t.shift_revision_id, t.position`,
+    },
+    {
+      name: "task-levels",
+      title: "Levels of tasks, each revision",
+      key: ["task_level_id"],
+      columns: [
+        id("task_level_id", "l.id", "Revision of the task's level"),
+        text("task", "k.name", "Task"),
+        whole("revision", "l.number", "1, 2, 3… within the task"),
+        date("effective_from", "l.effective_from", "From when it counts"),
+        level("level_db", "l.level_db", "Level without protection"),
+        level("lc_minus_la_db", "l.lc_minus_la_db", "C-weighted less A-weighted level"),
+        level("peak_db", "l.peak_db", "Peak level"),
+        code("grade", "l.grade", "How well it is known"),
+        code("strategy", "l.strategy", "How it was sampled; empty: not by a survey"),
+        time("recorded_at", utc("l.created_at"), "When it was recorded, UTC"),
+      ],
+      rest: `FROM task_levels l JOIN tasks k ON k.id = l.task_id WHERE k.site_id = '${siteId}' AND l.effective_from <= '${year}-12-31' ORDER BY k.name, l.number`,
+    },
+    {
+      name: "runs",
+      title: "Runs of instruments, each revision",
+      key: ["run_revision_id"],
+      columns: [
+        id("run_revision_id", "v.id", "Revision of the run"),
+        id("run_id", "r.id", "Run"),
+        whole("revision", "v.number", "1, 2, 3… within the run"),
+        yesNo("is_in_force", "r.current_revision_id = v.id", "The revision that counts"),
+        text(
+          "worker",
+          `CASE WHEN w.id IS NOT NULL THEN ${workerSql("w", asked)} END`,
+          "Who wore the instrument; empty: it stood in an area",
+        ),
+        text("area", "a.name", "Area where it stood; empty: a worker wore it"),
+        text("task", "k.name", "Task that it is a sample of; empty: it speaks for the day"),
+        date("date", "r.date", "Local date"),
+        text("instrument", "i.name", "Instrument"),
+        text("serial_number", "i.serial_number", "Its serial number"),
+        minutes("duration_min", "v.duration_min", "How long it measured"),
+        level("check_before_db", "v.check_before_db", "Field check before"),
+        level("check_after_db", "v.check_after_db", "Field check after"),
+        code(
+          "covers",
+          "v.covers",
+          "Whether it covers the shift, a part that stands for it, or a part alone",
+        ),
+        yesNo("is_void", "v.is_void", "Struck out"),
+        freeText("kept_reason", "v.kept_reason", "Why it was kept in spite of its field checks"),
+        freeText("unusual", "v.unusual", "What was unusual that day"),
+        time("recorded_at", utc("v.created_at"), "When the revision was recorded, UTC"),
+      ],
+      rest: `FROM runs r JOIN run_revisions v ON v.run_id = r.id JOIN instruments i ON i.id = r.instrument_id LEFT JOIN workers w ON w.id = r.worker_id
+        LEFT JOIN areas a ON a.id = r.area_id LEFT JOIN tasks k ON k.id = r.task_id
+        WHERE r.site_id = '${siteId}' AND ${inYear("r.date")} AND ${visible(runPolicy, actor, "r")} ORDER BY r.date, r.id, v.number`,
+    },
+    {
+      name: "readings",
+      title: "Readings of runs",
+      key: ["reading_id"],
+      columns: [
+        id("reading_id", "g.id", "Reading"),
+        id("run_revision_id", "g.run_revision_id", "Revision of the run"),
+        level(
+          "criterion_level_db",
+          "g.criterion_level_db",
+          "Criterion level that the instrument was set to",
+        ),
+        level("exchange_rate_db", "g.exchange_rate_db", "Exchange rate"),
+        level("threshold_db", "g.threshold_db", "Threshold; empty: none"),
+        code("weighting", "g.weighting", "Frequency weighting"),
+        code("response", "g.response", "Time weighting"),
+        share("dose_pct", "g.dose_pct", "Dose as read off"),
+        level("average_db", "g.average_db", "Average level as read off"),
+        level("lceq_db", "g.lceq_db", "C-weighted average"),
+        level("las_max_db", "g.las_max_db", "Highest level, slow"),
+        level("peak_db", "g.peak_db", "Peak level"),
+        code("peak_weighting", "g.peak_weighting", "Weighting of the peak"),
+      ],
+      rest: `FROM readings g JOIN runs r ON r.id = g.run_id
+        WHERE r.site_id = '${siteId}' AND ${inYear("r.date")} AND ${visible(runPolicy, actor, "r")} ORDER BY r.date, g.run_revision_id, g.position`,
+    },
+    {
+      name: "protectors",
+      title: "Data of protectors, each revision",
+      key: ["protector_revision_id"],
+      columns: [
+        id("protector_revision_id", "p.id", "Revision of the data"),
+        text("protector", "m.name", "Protector"),
+        code("kind", "m.kind", "Kind"),
+        whole("revision", "p.number", "1, 2, 3… within the protector"),
+        date("effective_from", "p.effective_from", "From when the data count"),
+        code("data_json", "p.data::text", "The data as they are stored, JSON"),
+      ],
+      rest: `FROM protector_model_revisions p JOIN protector_models m ON m.id = p.model_id WHERE p.effective_from <= '${year}-12-31' AND ${visible(protectorPolicy, actor, "m")} ORDER BY m.name, p.number`,
+    },
+    {
+      name: "assignments",
+      title: "Protectors assigned",
+      key: ["assignment_id"],
+      columns: [
+        id("assignment_id", "x.id", "Assignment"),
+        worker,
+        text("protector", "m.name", "Protector"),
+        text("second_protector", "o.name", "Worn over it; empty: none"),
+        text("task", "k.name", "Task for which it is assigned; empty: any"),
+        text("area", "a.name", "Area for which it is assigned; empty: any"),
+        date("from", "lower(x.valid)", "First day"),
+        date("until", "upper(x.valid) - 1", "Last day; empty: without end"),
+      ],
+      rest: `FROM assignments x JOIN workers w ON w.id = x.worker_id JOIN protector_models m ON m.id = x.inner_model_id LEFT JOIN protector_models o ON o.id = x.outer_model_id
+        LEFT JOIN tasks k ON k.id = x.task_id LEFT JOIN areas a ON a.id = x.area_id
+        WHERE w.site_id = '${siteId}' AND x.valid && daterange('${year}-01-01', '${year}-12-31', '[]') AND ${visible(assignmentPolicy, actor, "x")} ORDER BY 2, 7, 1`,
+    },
+    {
+      name: "fit-tests",
+      title: "Fit tests, each revision",
+      key: ["fit_test_revision_id"],
+      columns: [
+        id("fit_test_revision_id", "v.id", "Revision of the fit test"),
+        id("fit_test_id", "t.id", "Fit test"),
+        whole("revision", "v.number", "1, 2, 3… within the fit test"),
+        yesNo(
+          "is_in_force",
+          "t.current_revision_id = v.id AND NOT t.is_void",
+          "The revision that counts",
+        ),
+        worker,
+        text("protector", "m.name", "Protector"),
+        date("tested_on", "t.tested_on", "When it was done"),
+        code("method", "v.method", "How it was done"),
+        level("left_db", "v.left_db", "Personal attenuation, left ear"),
+        level("right_db", "v.right_db", "Personal attenuation, right ear"),
+        level("par_db", "v.par_db", "Personal attenuation rating"),
+        level("need_db", "v.need_db", "What was needed"),
+        yesNo("has_passed", "v.has_passed", "Passed"),
+      ],
+      rest: `FROM fit_tests t JOIN fit_test_revisions v ON v.fit_test_id = t.id JOIN workers w ON w.id = t.worker_id JOIN protector_models m ON m.id = t.model_id
+        WHERE t.site_id = '${siteId}' AND ${inYear("t.tested_on")} AND ${visible(fitPolicy, actor, "t")} ORDER BY t.tested_on, t.id, v.number`,
+    },
+    {
+      name: "results",
+      title: "Results of days in force, as in the year's CSV",
+      key: ["result_id"],
+      columns: resultColumns,
+      rest: `FROM days d JOIN day_results r ON r.id = d.current_result_id JOIN workers w ON w.id = d.worker_id JOIN sites s ON s.id = d.site_id
+        LEFT JOIN crews c ON c.id = d.crew_id LEFT JOIN tasks k ON k.id = r.deciding_task_id WHERE ${ofDays} ORDER BY d.date, w.employee_number`,
+    },
+    {
+      name: "findings",
+      title: "Findings with a day in the year",
+      key: ["finding_id"],
+      columns: [
+        id("finding_id", "n.id", "Finding"),
+        text(
+          "worker",
+          `CASE WHEN w.id IS NOT NULL THEN ${workerSql("w", asked)} END`,
+          "Whom it concerns; empty: a job or an instrument",
+        ),
+        text("job", "j.name", "Job that it concerns; empty: a worker or an instrument"),
+        text("instrument", "i.name", "Instrument that it concerns; empty: a worker or a job"),
+        code("kind", "n.kind", "What was found"),
+        code("criterion", "n.criterion", "Criterion that it is about; empty: none"),
+        code("state", "n.state", "State"),
+        date("first_date", "n.first_date", "First day"),
+        date("last_date", "n.last_date", "Last day"),
+        whole("days", "n.days_count", "How many days"),
+        id("last_result_id", "n.last_result_id", "Result of the last day"),
+        date("due_on", "n.due_on", "When it is due"),
+        date("closed_on", "n.closed_on", "When it was closed"),
+        freeText("closing_reason", "n.closing_reason", "Why it was closed"),
+        time("opened_at", utc("n.opened_at"), "When it was opened, UTC"),
+      ],
+      rest: `FROM findings n LEFT JOIN workers w ON w.id = n.worker_id LEFT JOIN jobs j ON j.id = n.job_id LEFT JOIN instruments i ON i.id = n.instrument_id
+        WHERE n.site_id = '${siteId}' AND n.first_date <= '${year}-12-31' AND n.last_date >= '${year}-01-01' AND ${visible(findingPolicy, actor, "n")} ORDER BY n.opened_at, n.id`,
+    },
+    {
+      name: "notices",
+      title: "Notices of the year",
+      key: ["notice_id"],
+      columns: [
+        id("notice_id", "n.id", "Notice"),
+        code("audience", "n.audience", "To whom: officer, supervisor or worker"),
+        text(
+          "recipient",
+          isNamed ? "u.name" : "NULL::text",
+          "Who was told; empty in a file without workers' names",
+        ),
+        code("state", "n.state", "Whether it was sent"),
+        time("written_at", utc("n.created_at"), "When it was written, UTC"),
+        time("sent_at", utc("n.sent_at"), "When the mail server took it, UTC"),
+        number("tries", "n.tries", "How often it was tried"),
+        code(
+          "finding_ids",
+          "(SELECT string_agg(DISTINCT x.finding_id::text, ' ') FROM notice_items x WHERE x.notice_id = n.id)",
+          "The findings it tells of",
+        ),
+      ],
+      rest: `FROM notices n JOIN users u ON u.id = n.recipient_id
+        WHERE n.site_id = '${siteId}' AND n.created_at >= '${year}-01-01' AND n.created_at < '${year + 1}-01-01' AND ${visible(noticePolicy, actor, "n")} ORDER BY n.created_at, n.id`,
+    },
+    {
+      name: "trail",
+      title: "Events of the trail about the site, in the year",
+      key: ["event_id"],
+      columns: [
+        whole("event_id", "e.id", "Event"),
+        time("at", utc("e.at"), "When, UTC"),
+        text(
+          "actor",
+          isNamed ? "u.name" : "e.actor_id::text",
+          "Who; empty: the program itself. An id in a file without workers' names",
+        ),
+        code("action", "e.action", "What was done"),
+        code("subject_kind", "e.subject_kind", "To what kind of thing"),
+        id("subject_id", "e.subject_id", "To which"),
+        id("values_sha256", "encode(e.values_digest, 'hex')", "Salted digest of what changed"),
+        whole(
+          "seal_number",
+          "s.number",
+          "Its seal in the organization's chain; empty: not sealed yet",
+        ),
+        id("seal_sha256", "encode(s.hash, 'hex')", "The seal"),
+      ],
+      rest: `FROM audit_events e LEFT JOIN users u ON u.id = e.actor_id LEFT JOIN audit_seals s ON s.event_id = e.id
+        WHERE e.organization_id = '${actor.organizationId}' AND e.at >= '${year}-01-01' AND e.at < '${year + 1}-01-01' AND ${siteOfEvent("e")} = '${siteId}' ORDER BY e.id`,
+    },
+  ];
+}
+
+/** SQL of a table's records. COPY takes no parameters, so the values stand in the text. */
+export const tableQuery = ({ columns, rest }: YearTable): string =>
+  `SELECT ${columns.map(({ name, sql, type }) => `${type === "text" ? `csv_text(${sql})` : type === "boolean" ? `(${sql})::text` : sql} AS "${name}"`).join(",\n  ")}\n${rest}`;
+
+const DATATYPES: Record<YearColumn["type"], unknown> = {
+  text: "string",
+  code: "string",
+  id: "string",
+  number: "double",
+  integer: "integer",
+  date: { base: "date", format: "yyyy-MM-dd" },
+  time: "string",
+  boolean: "boolean",
+};
+
+/** What the tables hold, as CSV on the Web metadata (W3C tabular-metadata). */
+export function csvMetadata(tables: readonly YearTable[]): object {
+  return {
+    "@context": ["http://www.w3.org/ns/csvw", { "@language": "en" }],
+    tables: tables.map(({ name, title, columns, key }) => ({
+      url: `${name}.csv`,
+      "dc:title": title,
+      dialect: { header: true, encoding: "utf-8", lineTerminators: ["\r\n"] },
+      tableSchema: {
+        columns: columns.map((one) => ({
+          name: one.name,
+          titles: one.name,
+          datatype: DATATYPES[one.type],
+          "dc:description": one.unit ? `${one.meaning} (${one.unit})` : one.meaning,
+        })),
+        ...(key.length > 0 && { primaryKey: key }),
+      },
+    })),
+  };
+}

@@ -1,0 +1,32 @@
+import {
+  type CreationOptional,
+  type InferAttributes,
+  type InferCreationAttributes,
+  Model,
+  type Sequelize,
+} from "sequelize";
+import * as column from "./columns";
+
+/** Changes that were tried and kept. What they are and do are columns of their own. */
+export class Plan extends Model<InferAttributes<Plan>, InferCreationAttributes<Plan>> {
+  declare id: CreationOptional<string>;
+  declare organizationId: string;
+  declare siteId: string;
+  declare name: string;
+  declare putAsideReason: CreationOptional<string | null>;
+  declare revision: CreationOptional<number>;
+}
+
+export function definePlanModel(sequelize: Sequelize): void {
+  Plan.init(
+    {
+      id: column.id(),
+      organizationId: column.uuid(),
+      siteId: column.uuid(),
+      name: column.text(),
+      putAsideReason: column.textOrNull(),
+      revision: column.revision(),
+    },
+    { sequelize, tableName: "plans" },
+  );
+}

@@ -1,0 +1,220 @@
+import { z } from "zod";
+import type {
+  BandAttenuation,
+  OctaveBandValues,
+  ProtectorData,
+  TaskLevel,
+} from "../acoustics/types";
+import type { KnownAssignment } from "../day/build-day-input";
+import { Can, IsoDate, Name, PageQuery, pageOf, Reason } from "./common";
+import { DayFigures } from "./finding";
+
+export const PlanScope = z.object({
+  scopeKind: z.enum(["worker", "job", "area"]),
+  scopeId: z.uuid(),
+});
+export type PlanScope = z.infer<typeof PlanScope>;
+
+const ReductionDb = z.number().min(-20).max(60);
+const Bands = z.custom<OctaveBandValues>(
+  (value) =>
+    Array.isArray(value) &&
+    value.length === 8 &&
+    value.every((band) => typeof band === "number" && band >= -20 && band <= 60),
+);
+
+/** One thing done otherwise. Whatever a task gains in time another loses, and the other way round. */
+export const PlanChange = z.discriminatedUnion("kind", [
+  z
+    .object({
+      kind: z.literal("noise"),
+      taskId: z.uuid(),
+      byDb: ReductionDb.nullable(),
+      bandsDb: Bands.nullable(),
+    })
+    .check((context) => {
+      const { byDb, bandsDb } = context.value;
+      if ((byDb === null) === (bandsDb === null))
+        context.issues.push({
+          code: "custom",
+          input: byDb,
+          path: ["byDb"],
+          params: { code: "flat-or-bands" },
+        });
+    }),
+  z.object({
+    kind: z.literal("duration"),
+    taskId: z.uuid(),
+    durationMin: z.number().min(0).max(1440),
+    otherTaskId: z.uuid(),
+  }),
+  z.object({
+    kind: z.literal("rotation"),
+    taskId: z.uuid(),
+    workerId: z.uuid(),
+    otherWorkerId: z.uuid(),
+    otherTaskId: z.uuid(),
+    minutes: z.number().min(1).max(1440),
+  }),
+  z.object({
+    kind: z.literal("protector"),
+    taskId: z.uuid().nullable(),
+    innerModelId: z.uuid(),
+    outerModelId: z.uuid().nullable(),
+    /** Null: everybody of the scope. */
+    workerIds: z.array(z.uuid()).min(1).max(200).nullable(),
+  }),
+  z.object({
+    kind: z.literal("wearing"),
+    taskId: z.uuid().nullable(),
+    wornPct: z.number().min(0).max(100),
+  }),
+]);
+export type PlanChange = z.infer<typeof PlanChange>;
+
+export const PlanInput = PlanScope.extend({
+  name: Name(200),
+  goal: z.string().min(1).max(100),
+  changes: z.array(PlanChange).min(1).max(30),
+});
+export type PlanInput = z.infer<typeof PlanInput>;
+
+export const PlanPutAside = z.object({ reason: Reason });
+
+const Scope = PlanScope.extend({ name: z.string(), siteId: z.uuid(), siteName: z.string() });
+
+/** The nominal days that changes are tried on, with all that the engine needs to judge them. */
+export const TrySubject = z.object({
+  scope: Scope,
+  date: IsoDate,
+  ruleSetKey: z.string(),
+  ruleSetVersion: z.number(),
+  site: z.object({
+    wearFromDb: z.number(),
+    creditsActivePart: z.boolean(),
+    usesUncertainty: z.boolean(),
+  }),
+  tasks: z.array(
+    z.object({
+      id: z.uuid(),
+      name: z.string(),
+      areaId: z.uuid().nullable(),
+      zone: z.enum(["none", "single", "double"]),
+      level: z.custom<TaskLevel>().nullable(),
+    }),
+  ),
+  models: z.array(z.custom<ProtectorData>()),
+  pairs: z.array(
+    z.object({
+      innerModelId: z.uuid(),
+      outerModelId: z.uuid(),
+      bands: z.custom<BandAttenuation>(),
+    }),
+  ),
+  workers: z.array(
+    z.object({
+      id: z.uuid(),
+      name: z.string(),
+      employeeNumber: z.string(),
+      mustWear: z.boolean(),
+      personalTargetDb: z.number().nullable(),
+      lengthMin: z.number(),
+      tasks: z.array(
+        z.object({
+          taskId: z.uuid(),
+          durationMin: z.number(),
+          wornPct: z.number().nullable(),
+        }),
+      ),
+      assignments: z.array(z.custom<KnownAssignment>()),
+      fits: z.array(z.object({ modelId: z.uuid(), parDb: z.number() })),
+    }),
+  ),
+  /** Of the scope, but without a nominal day to try anything on. */
+  withoutDay: z.array(z.object({ id: z.uuid(), name: z.string() })),
+  hasMore: z.boolean(),
+});
+export type TrySubject = z.infer<typeof TrySubject>;
+
+const Verdict = z.enum(["under", "over", "cant-tell-yet", "not-assessed"]);
+/** A day as it is expected, before or after the changes. */
+const Tried = z.object({
+  verdict: Verdict,
+  outsideDb: z.number().nullable(),
+  atEarDb: z.number().nullable(),
+  figures: DayFigures.omit({ resultId: true, origin: true }).nullable(),
+  cannot: z
+    .object({
+      changeIndex: z.number(),
+      why: z.enum(["not-enough-time", "not-in-the-day"]),
+    })
+    .nullable(),
+});
+export type Tried = z.infer<typeof Tried>;
+
+export const PlanOutcome = z.object({
+  workers: z.array(
+    z.object({
+      workerId: z.uuid(),
+      workerName: z.string(),
+      employeeNumber: z.string(),
+      before: Tried,
+      after: Tried,
+    }),
+  ),
+});
+export type PlanOutcome = z.infer<typeof PlanOutcome>;
+
+const Counts = z.object({
+  under: z.number(),
+  over: z.number(),
+  "cant-tell-yet": z.number(),
+  "not-assessed": z.number(),
+});
+
+export const PlanRow = z.object({
+  id: z.uuid(),
+  name: z.string(),
+  scope: Scope,
+  goal: z.string(),
+  ruleSetKey: z.string(),
+  ruleSetVersion: z.number(),
+  keptAt: z.string(),
+  authorName: z.string().nullable(),
+  putAsideReason: z.string().nullable(),
+  changesCount: z.number(),
+  before: Counts,
+  after: Counts,
+  /** The loudest expected day after the changes, without protection and at the ear, dB. */
+  worstOutsideDb: z.number().nullable(),
+  worstAtEarDb: z.number().nullable(),
+  revision: z.number(),
+  can: Can("keep", "putAside"),
+});
+export type PlanRow = z.infer<typeof PlanRow>;
+export const PlanPage = pageOf(PlanRow);
+export const PlanFilter = PageQuery.extend({
+  siteId: z.uuid().optional(),
+  state: z.enum(["kept", "all"]).default("kept"),
+});
+
+export const PlanView = PlanRow.extend({
+  baseDate: IsoDate,
+  methodVersion: z.number(),
+  changes: z.array(PlanChange),
+  outcome: PlanOutcome,
+  /** Names of what the changes speak of. */
+  names: z.record(z.string(), z.string()),
+  /** Each worker's latest judged day since it was kept. */
+  since: z.array(
+    z.object({
+      workerId: z.uuid(),
+      date: IsoDate,
+      outsideDb: z.number().nullable(),
+      atEarDb: z.number().nullable(),
+      verdict: Verdict,
+      grade: z.string(),
+    }),
+  ),
+});
+export type PlanView = z.infer<typeof PlanView>;

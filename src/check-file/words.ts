@@ -1,0 +1,106 @@
+import type { DifferingResult, FileState } from "../../shared/year-file/check-year-file";
+
+/** The page travels in the file and has no catalogue: its few words stand here, in the languages that readers have. */
+const en = {
+  title: "Check this file",
+  lead: "Drop the year’s ZIP here, as you got it. Everything happens on this computer: nothing is sent anywhere, and no network is needed.",
+  choose: "The year’s file (ZIP)",
+  checking: (pct: string) => `Checking: ${pct} %`,
+  sound: "Nothing speaks against this file.",
+  soundMeaning:
+    "It is whole, each file in it has the hash that the manifest says, and every result that has inputs came out of them again.",
+  unsound: "This file is not what its manifest says.",
+  broken: "This file is not whole, and says nothing.",
+  why: "Why",
+  whatNot:
+    "That nobody wrote both file and manifest anew is not shown by the file itself: compare the last seal below with the one you were sent, or with the trail.",
+  facts: "The file",
+  organization: "Organization",
+  site: "Site and year",
+  made: "Made at",
+  rules: "Rule sets, version",
+  methods: "Versions of the arithmetic",
+  seal: "Last seal of the trail",
+  none: "none",
+  results: "Results",
+  rederived: "Derived again from their inputs, the same",
+  imported: "Imported as figures, without inputs",
+  differing: "Not the same",
+  differences: "Results that differ",
+  firstOf: (shown: string, all: string) => `The first ${shown} of ${all}.`,
+  result: "Result",
+  worker: "Worker, date",
+  where: "In",
+  what: "Stated, and derived",
+  files: "Files",
+  file: "File",
+  rows: "Records",
+  state: "Against the manifest",
+  states: {
+    "as-stated": "as stated",
+    changed: "changed: another hash",
+    "rows-differ": "another number of records",
+    missing: "missing",
+    "not-listed": "not named in the manifest",
+  } satisfies Record<FileState, string>,
+  problems: {
+    unreadable: "can’t be read",
+    "unknown-method": "its version of the arithmetic is not in this page",
+    "unknown-rule-set": "its rule set is not in this page",
+    "not-computable": "nothing can be computed from its inputs",
+  } satisfies Record<NonNullable<DifferingResult["problem"]>, string>,
+};
+
+export type Words = typeof en;
+
+const de: Words = {
+  title: "Diese Datei prüfen",
+  lead: "Legen Sie das ZIP des Jahres hier ab, so wie Sie es bekommen haben. Alles geschieht auf diesem Rechner: Nichts wird gesendet, und ein Netz ist nicht nötig.",
+  choose: "Die Datei des Jahres (ZIP)",
+  checking: (pct) => `Wird geprüft: ${pct} %`,
+  sound: "Nichts spricht gegen diese Datei.",
+  soundMeaning:
+    "Sie ist vollständig, jede Datei darin hat die Prüfsumme, die das Verzeichnis nennt, und jedes Ergebnis mit Eingaben kam aus ihnen wieder heraus.",
+  unsound: "Diese Datei ist nicht, was ihr Verzeichnis sagt.",
+  broken: "Diese Datei ist nicht vollständig und besagt nichts.",
+  why: "Warum",
+  whatNot:
+    "Dass niemand Datei und Verzeichnis zusammen neu geschrieben hat, zeigt die Datei selbst nicht: Vergleichen Sie das letzte Siegel unten mit dem, das Ihnen geschickt wurde, oder mit dem Protokoll.",
+  facts: "Die Datei",
+  organization: "Organisation",
+  site: "Standort und Jahr",
+  made: "Erstellt",
+  rules: "Regelwerke, Fassung",
+  methods: "Fassungen der Rechnung",
+  seal: "Letztes Siegel des Protokolls",
+  none: "keines",
+  results: "Ergebnisse",
+  rederived: "Aus ihren Eingaben wieder hergeleitet, gleich",
+  imported: "Als Zahlen importiert, ohne Eingaben",
+  differing: "Nicht gleich",
+  differences: "Ergebnisse, die abweichen",
+  firstOf: (shown, all) => `Die ersten ${shown} von ${all}.`,
+  result: "Ergebnis",
+  worker: "Person, Datum",
+  where: "In",
+  what: "Angegeben, und hergeleitet",
+  files: "Dateien",
+  file: "Datei",
+  rows: "Datensätze",
+  state: "Gegen das Verzeichnis",
+  states: {
+    "as-stated": "wie angegeben",
+    changed: "geändert: andere Prüfsumme",
+    "rows-differ": "andere Zahl von Datensätzen",
+    missing: "fehlt",
+    "not-listed": "im Verzeichnis nicht genannt",
+  },
+  problems: {
+    unreadable: "nicht lesbar",
+    "unknown-method": "ihre Fassung der Rechnung ist nicht in dieser Seite",
+    "unknown-rule-set": "ihr Regelwerk ist nicht in dieser Seite",
+    "not-computable": "aus den Eingaben lässt sich nichts berechnen",
+  },
+};
+
+export const wordsFor = (language: string): Words => (language.startsWith("de") ? de : en);
