@@ -1,8 +1,8 @@
 import { randomUUID } from "node:crypto";
 import type pg from "pg";
-import { RESULT_COLUMNS } from "../server/commands/recompute-days";
 import { recomputeStaleDays } from "../server/jobs/recompute-stale-days";
 import { connect, sequelize } from "../server/lib/db";
+import { RESULT_COLUMNS } from "../shared/day/result-facts";
 import { line, measureBeside, title } from "./lib/measure";
 import { fetchJson, openDatabase, organizations, signIn } from "./lib/scale";
 

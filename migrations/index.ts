@@ -19,6 +19,7 @@ import { rowTrail } from "./20261202090000-row-trail";
 import { firstFits } from "./20261202090500-first-fits";
 import { followUp } from "./20261202092000-follow-up";
 import { training } from "./20261202092100-training";
+import { calendarFeeds } from "./20261202092200-calendar-feeds";
 import { resultLetters } from "./20261202094000-result-letters";
 import { plans } from "./20261202096000-plans";
 
@@ -46,5 +47,6 @@ export const migrations = [
   resultLetters,
   followUp,
   training,
+  calendarFeeds,
   plans,
 ];

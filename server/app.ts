@@ -110,6 +110,7 @@ export function createApp(
   api.use(["/auth/sign-in", "/auth/callback"], limitTries("sign-in", 1200, 10));
   api.use("/auth/worker-code", limitTries("worker-code", 10, 15));
   // Behind one address a whole works may read its letters; a secret of 24 bytes is not guessed at this rate.
+  api.use("/calendar", limitTries("calendar", 120, 10));
   api.use("/acknowledgements", limitTries("acknowledgement", 120, 10));
   api.use(...sessions(config));
   api.use(refuseForgery);

@@ -9,10 +9,9 @@ import pg from "pg";
 import { evaluateDay } from "../shared/acoustics/day";
 import { METHOD_VERSION } from "../shared/acoustics/methods";
 import type { DayInput, ProtectorData, TaskLevel, TimedTask } from "../shared/acoustics/types";
-import { resultFacts } from "../shared/day/result-facts";
+import { RESULT_COLUMNS, resultFacts } from "../shared/day/result-facts";
 import { type Cause, findCauses } from "../shared/findings/causes";
 import { ruleSetInForce } from "../shared/rule-sets";
-import { RESULT_COLUMNS } from "./commands/recompute-days";
 import { configOrExit } from "./config";
 
 /** Unless said otherwise: four years of working days. */

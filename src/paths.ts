@@ -35,6 +35,7 @@ export const paths = {
   result: (workerId: string, date: string) => `/workers/${workerId}/days/${date}`,
   storedResult: (id: string) => `/results/${id}`,
   shift: (id: string) => `/shifts/${id}`,
+  duties: "/due",
   findings: "/findings",
   finding: (id: string) => `/findings/${id}`,
   letters: "/letters",

@@ -19,6 +19,7 @@ import { layOutProtection, layOutRounds } from "./protection";
 import { layOutRecordings } from "./recordings";
 import { takeStep } from "./steps";
 import { dateStory } from "./story";
+import { layOutTraining } from "./training";
 
 const DAYS_A_MONTH = 30.4;
 /** Further back than this, days are entered and computed a week at a time. */
@@ -102,6 +103,7 @@ export async function layOutDemo({
   await layOutRecordings(demo);
   await layOutFits(demo);
   await layOutProtection(demo);
+  await layOutTraining(demo);
   await compute(await staleDays(demo), new Date(now.getTime() - 60_000));
   await layOutPlans(demo);
   await sendOutToday(demo, now);

@@ -2,7 +2,7 @@ import { createHash } from "node:crypto";
 import { evaluateDay } from "../../shared/acoustics/day";
 import { METHOD_VERSION } from "../../shared/acoustics/methods";
 import type { DayEvaluation, DayInput, RuleSetVersion } from "../../shared/acoustics/types";
-import { resultFacts } from "../../shared/day/result-facts";
+import { RESULT_COLUMNS, resultFacts } from "../../shared/day/result-facts";
 import { findCauses } from "../../shared/findings/causes";
 import { canonicalJson } from "../lib/audit";
 import { execute, rows } from "../lib/db";
@@ -128,38 +128,6 @@ function computeDay(day: ResolvedDay, input: DayInput): ComputedDay {
 export function hashOf(refs: DayRefs, methodVersion: number = METHOD_VERSION): string {
   return createHash("sha256").update(canonicalJson({ refs, methodVersion })).digest("hex");
 }
-
-/** Columns of a stored result and the members of `resultFacts` that fill them, with their types. */
-export const RESULT_COLUMNS = {
-  governing_rule_set: ["ruleSetKey", "text"],
-  governing_version: ["ruleSetVersion", "int"],
-  method_version: ["methodVersion", "int"],
-  shift_min: ["shiftMin", "float8"],
-  unaccounted_min: ["unaccountedMin", "float8"],
-  grade: ["grade", "text"],
-  is_projected: ["isProjected", "boolean"],
-  is_kept: ["isKept", "boolean"],
-  outside_db: ["outsideDb", "float8"],
-  outside_bound: ["outsideBound", "text"],
-  at_ear_db: ["atEarOffDb", "float8"],
-  at_ear_counted_db: ["atEarCountedDb", "float8"],
-  at_ear_bound: ["atEarBound", "text"],
-  at_ear_active_db: ["atEarActiveDb", "float8"],
-  at_ear_as_worked_db: ["atEarAsWorkedDb", "float8"],
-  uncertainty_db: ["uncertaintyDb", "float8"],
-  dose_pct: ["dosePct", "float8"],
-  dose_bound: ["doseBound", "text"],
-  while_worn_db: ["whileWornDb", "float8"],
-  while_worn_bound: ["whileWornBound", "text"],
-  verdict_outside: ["verdictOutside", "text"],
-  verdict_at_ear: ["verdictAtEar", "text"],
-  word: ["word", "text"],
-  deciding_task_id: ["decidingTaskId", "uuid"],
-  has_protector: ["hasProtector", "text"],
-  reason: ["reason", "text"],
-  own_target_db: ["ownTargetDb", "float8"],
-  criteria: ["criteria", "jsonb"],
-} as const satisfies Record<string, readonly [keyof ReturnType<typeof resultFacts>, string]>;
 
 const resultColumns = Object.keys(RESULT_COLUMNS).join(", ");
 const resultMembers = Object.values(RESULT_COLUMNS);

@@ -1,3 +1,4 @@
+import { randomBytes } from "node:crypto";
 import { pipeline } from "node:stream/promises";
 import type { Response } from "express";
 import pg from "pg";
@@ -6,11 +7,12 @@ import { type Actor, visible } from "../lib/policy";
 import { dayPolicy } from "../policies";
 import { RecordEnds } from "./record-ends";
 import { TRAILER, YEAR_COLUMNS } from "./year-columns";
+import { type WorkersAs, workerSql } from "./year-tables";
 
 interface YearExport {
   siteId: string;
   year: number;
-  workers: "number" | "name";
+  workers: WorkersAs;
 }
 
 const uuid = /^[0-9a-f]{8}(-[0-9a-f]{4}){3}-[0-9a-f]{12}$/;
@@ -19,8 +21,9 @@ const uuid = /^[0-9a-f]{8}(-[0-9a-f]{4}){3}-[0-9a-f]{12}$/;
 export function yearQuery(actor: Actor, { siteId, year, workers }: YearExport): string {
   if (!uuid.test(siteId) || !Number.isInteger(year))
     throw new RangeError("a site's id and a whole year");
+  const worker = workerSql("w", { workers, salt: randomBytes(16).toString("hex") });
   const columns = YEAR_COLUMNS.map(({ name, sql, type }) => {
-    const expression = name === "worker" && workers === "name" ? "w.name" : sql;
+    const expression = name === "worker" ? worker : sql;
     return `${type === "text" ? `csv_text(${expression})` : expression} AS ${name}`;
   });
   return `SELECT ${columns.join(",\n  ")}

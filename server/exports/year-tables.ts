@@ -52,7 +52,10 @@ const share = column("number", "%");
 const number = column("number");
 
 /** SQL: how a worker of the alias is called in the file. */
-export function workerSql(alias: string, { workers, salt }: YearRecords): string {
+export function workerSql(
+  alias: string,
+  { workers, salt }: Pick<YearRecords, "workers" | "salt">,
+): string {
   if (workers === "name") return `${alias}.name`;
   if (workers === "number") return `${alias}.employee_number`;
   return `'W-' || left(encode(sha256(convert_to('${salt}' || ${alias}.id::text, 'UTF8')), 'hex'), 12)`;

@@ -2,6 +2,7 @@ import { createHash } from "node:crypto";
 import type { Writable } from "node:stream";
 import type pg from "pg";
 import { to as copyTo } from "pg-copy-streams";
+import { RESULT_COLUMNS } from "../../shared/day/result-facts";
 import {
   MANIFEST,
   type ManifestFile,
@@ -9,7 +10,6 @@ import {
   type ResultLine,
   type YearManifest,
 } from "../../shared/year-file/manifest";
-import { RESULT_COLUMNS } from "../commands/recompute-days";
 import { inTransaction, row, rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
 import { dayPolicy } from "../policies";
@@ -134,7 +134,14 @@ export function streamYearZip(
         );
         const ends = new RecordEnds();
         records.on("error", (error) => ends.destroy(error));
-        await add(`${table.name}.csv`, records.pipe(ends), () => ends.count - 1);
+        try {
+          await add(`${table.name}.csv`, records.pipe(ends), () => ends.count - 1);
+        } catch (error) {
+          // What nobody reads any more runs out, or the connection would wait for its reader for ever.
+          records.unpipe(ends);
+          records.resume();
+          throw error;
+        }
       }
       const months = await rows<{ month: string }>(
         `SELECT DISTINCT to_char(r.date, 'YYYY-MM') AS month FROM day_results r WHERE r.site_id = $1 AND r.date >= make_date($2, 1, 1) AND r.date <= make_date($2, 12, 31)

@@ -1,5 +1,4 @@
 import { createHash } from "node:crypto";
-import { once } from "node:events";
 import { Readable, type Writable } from "node:stream";
 import { pipeline } from "node:stream/promises";
 import { crc32, createDeflateRaw } from "node:zlib";
@@ -49,9 +48,15 @@ export class ZipStream {
     if (this.offsetBytes > LARGEST)
       throw new RangeError("the file is too large for this kind of ZIP");
     if (this.out.destroyed) throw new Error("the reader has gone");
-    if (!this.out.write(bytes))
-      // A reader that goes away drains nothing any more.
-      await Promise.race([once(this.out, "drain"), once(this.out, "close")]);
+    if (this.out.write(bytes)) return;
+    // A reader that goes away drains nothing any more.
+    await new Promise<void>((resolve) => {
+      const goOn = () => {
+        this.out.off("drain", goOn).off("close", goOn);
+        resolve();
+      };
+      this.out.on("drain", goOn).on("close", goOn);
+    });
   }
 
   async add(path: string, content: AsyncIterable<Buffer> | Iterable<Buffer>): Promise<EntryFacts> {

@@ -162,8 +162,10 @@ export async function draftRoster(
       return cells.refuse(line, "employee_number", "worker-of-another-site");
     const date = (field: string) => (line.cells.get(field) ? cells.date(line, field) : null);
     const hiredOn = date("hired_on") ?? before?.hiredOn ?? null;
+    const jobName = cells.text(line, "job");
+    if (jobName !== null && !jobs.has(jobName)) cells.refuse(line, "job", "job-unknown");
     if (hiredOn === null) {
-      if (!cells.isRefused(line, "hired_on")) cells.refuse(line, "hired_on", "empty");
+      cells.refuseUnlessRefused(line, "hired_on", "first-day-needed", {});
       return null;
     }
     const leftOn = date("left_on");
@@ -177,8 +179,6 @@ export async function draftRoster(
       cells.refuse(line, "left_on", "left-before-hired", { hiredOn });
     if (before?.leftOn && leftOn === null)
       cells.refuse(line, "left_on", "left-already", { leftOn: before.leftOn });
-    const jobName = cells.text(line, "job");
-    if (jobName !== null && !jobs.has(jobName)) cells.refuse(line, "job", "job-unknown");
     const isMove = before !== null && before.siteId !== site.id;
     const facts = factsOf(
       before ?? {
@@ -235,7 +235,7 @@ export async function draftRoster(
     )
       return null;
     if (fromDate === null) {
-      if (!cells.isRefused(line, "crew_from")) cells.refuse(line, "crew_from", "empty");
+      cells.refuseUnlessRefused(line, "crew_from", "crew-day-needed", {});
       return null;
     }
     for (const { code, params } of dateIssues(["crew_from"], fromDate))

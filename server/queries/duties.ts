@@ -42,13 +42,13 @@ const sources: Readonly<Record<DutyKind, (actor: Actor) => string>> = {
     WHERE n.state IS DISTINCT FROM 'sent' AND NOT EXISTS (SELECT 1 FROM notice_acknowledgements a WHERE a.letter_id = l.id)
       AND NOT EXISTS (SELECT 1 FROM result_letters x WHERE x.replaces_id = l.id) AND ${visible(letterPolicy, actor, "l")}`,
   monitoring: (actor) => `
-    SELECT c.id::text, c.site_id, c.happened_on, NULL, c.what, c.id, NULL, NULL
+    SELECT c.id::text, c.site_id, c.happened_on, NULL::uuid, c.what, c.id, NULL, NULL
     FROM workplace_changes c WHERE c.struck_reason IS NULL AND ${visible(surveyPolicy, actor, "c")} AND EXISTS (
       SELECT 1 FROM tasks t WHERE (t.id = c.task_id OR t.area_id = c.area_id
           OR EXISTS (SELECT 1 FROM job_tasks k WHERE k.job_id = c.job_id AND k.task_id = t.id))
         AND (SELECT max(v.effective_from) FROM task_levels v WHERE v.task_id = t.id) < c.happened_on)`,
   calibration: (actor) => `
-    SELECT i.id::text, i.site_id, i.calibration_due_on, NULL, i.name, i.id, NULL, NULL
+    SELECT i.id::text, i.site_id, i.calibration_due_on, NULL::uuid, i.name, i.id, NULL, NULL
     FROM instruments i WHERE NOT i.is_archived AND i.calibration_due_on IS NOT NULL AND ${visible(programmePolicy, actor, "i")}`,
   "fit-test": (actor) => `
     SELECT concat(q.worker_id, ' ', q.model_id), q.site_id, q.due_on, q.worker_id, q.protector, q.worker_id, NULL, NULL

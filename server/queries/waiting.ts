@@ -49,8 +49,9 @@ export async function waitingFor(
   );
   const findings = await listFindings(actor, { state: "open", siteId, limit: 100 });
   const ofSite = siteId ? "n.site_id = :siteId AND" : "";
+  // Letters of results have a page of their own.
   const outgoing = await findNotices(
-    `${ofSite} n.state IN ('waiting', 'held') AND n.last_error IS NULL AND ${visible(noticePolicy, actor, "n")}`,
+    `${ofSite} n.kind = 'findings' AND n.state IN ('waiting', 'held') AND n.last_error IS NULL AND ${visible(noticePolicy, actor, "n")}`,
     { siteId },
   );
   const byEntry = new Map<string, typeof outgoing>();

@@ -7,7 +7,6 @@ import {
   YearDictionaryQuery,
   YearFileQuery,
   YearQuery,
-  YearRecordsQuery,
 } from "../../shared/schemas/waiting";
 import type { Config } from "../config";
 import { streamYear } from "../exports/year-csv";
@@ -70,7 +69,7 @@ export function defineExportRoutes(config: Pick<Config<"web">, "DATABASE_URL">):
     {
       summary: "A site's year with all its records and the means to check them, as a ZIP, streamed",
       may: may.export,
-      query: YearRecordsQuery,
+      query: YearFileQuery,
       streams: true,
     },
     async ({ actor, query, response }) => {

@@ -1,10 +1,10 @@
 /** What a rule set makes an employer do again and again, or by a date. */
-export const DUTY_KEYS = ["training"] as const;
+export const DUTY_KEYS = ["training", "monitoring", "act-at-once"] as const;
 export type DutyKey = (typeof DUTY_KEYS)[number];
 
 export interface Duty {
   readonly key: DutyKey;
-  /** Of the rule set: who was over one of them within a year is owed it. */
+  /** Of the rule set: who was over one of them is owed it. Empty: what it hangs from is no criterion, as a change. */
   readonly criterionIds: readonly string[];
   /** Days from the first such day until it is due; 0: at once, or where the text gives no term. */
   readonly withinDays: number;
@@ -18,6 +18,22 @@ export interface Duty {
 export const DUTIES: Readonly<Record<string, readonly Duty[]>> = {
   "eu-2003-10-ec": [
     {
+      key: "act-at-once",
+      criterionIds: ["limit"],
+      withinDays: 0,
+      everyMonths: null,
+      citation: "Directive 2003/10/EC, article 7(2)",
+      sourceStatus: "from-memory",
+    },
+    {
+      key: "monitoring",
+      criterionIds: [],
+      withinDays: 0,
+      everyMonths: null,
+      citation: "Directive 2003/10/EC, article 4",
+      sourceStatus: "from-memory",
+    },
+    {
       key: "training",
       criterionIds: ["lower-action-training"],
       withinDays: 0,
@@ -28,6 +44,22 @@ export const DUTIES: Readonly<Record<string, readonly Duty[]>> = {
   ],
   "uk-2005": [
     {
+      key: "act-at-once",
+      criterionIds: ["limit"],
+      withinDays: 0,
+      everyMonths: null,
+      citation: "Control of Noise at Work Regulations 2005, regulation 6",
+      sourceStatus: "from-memory",
+    },
+    {
+      key: "monitoring",
+      criterionIds: [],
+      withinDays: 0,
+      everyMonths: null,
+      citation: "Control of Noise at Work Regulations 2005, regulation 5",
+      sourceStatus: "from-memory",
+    },
+    {
       key: "training",
       criterionIds: ["lower-action"],
       withinDays: 0,
@@ -37,6 +69,14 @@ export const DUTIES: Readonly<Record<string, readonly Duty[]>> = {
     },
   ],
   "us-general-industry": [
+    {
+      key: "monitoring",
+      criterionIds: [],
+      withinDays: 0,
+      everyMonths: null,
+      citation: "29 CFR 1910.95(d)(3)",
+      sourceStatus: "from-memory",
+    },
     {
       key: "training",
       criterionIds: ["action-value"],

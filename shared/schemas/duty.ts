@@ -45,3 +45,7 @@ export const DutyFilter = PageQuery.extend({
   from: IsoDate.optional(),
   to: IsoDate.optional(),
 });
+
+/** A private calendar address: when it was made; null where there is none. Its text is shown once, as it is made. */
+export const CalendarFeedView = z.object({ madeAt: z.string().nullable() });
+export const CalendarFeedMade = CalendarFeedView.extend({ address: z.string() });

@@ -78,12 +78,8 @@ export const YearQuery = z.object({
   siteId: z.uuid(),
   year: z.coerce.number().int().min(1970).max(2200),
 });
-/** Workers in the file by employee number, or by name. */
+/** Workers in the file by employee number, by name, or under names made up for the file. */
 export const YearFileQuery = YearQuery.extend({
-  workers: z.enum(["number", "name"]).default("number"),
-});
-/** The same for the file with all records, where workers may also stand under names made up for it. */
-export const YearRecordsQuery = YearQuery.extend({
   workers: z.enum(["number", "name", "pseudonym"]).default("number"),
 });
 /** Without a language: the reader's own. */

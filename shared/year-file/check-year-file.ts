@@ -1,6 +1,6 @@
 import { METHODS } from "../acoustics/methods";
 import type { DayInput, RuleSetVersion } from "../acoustics/types";
-import { resultFacts } from "../day/result-facts";
+import { RESULT_COLUMNS, resultFacts } from "../day/result-facts";
 import { ruleSetVersion } from "../rule-sets";
 import { MANIFEST, RESULTS_FOLDER, type ResultLine, type YearManifest } from "./manifest";
 import { readLines, readRecords } from "./read-records";
@@ -62,6 +62,10 @@ const STATED: Record<string, string> = {
   reason: "reason",
   grade: "grade",
 };
+
+const MEMBERS = Object.values(RESULT_COLUMNS).map(([name]): string => name);
+/** What results did not keep at first: where one says nothing of it, nothing is compared. */
+const KEPT_LATER = new Set(["atEarBound", "whileWornBound", "doseBound", "atEarCountedDb"]);
 
 /** Two programs' transcendental functions may differ in the last place; a figure that means something else differs by more. */
 const sameNumber = (a: number, b: number) =>
@@ -188,17 +192,21 @@ export async function checkYearFile(
           differs({ id, worker, date, file: path, problem: derived, fields: [] });
           continue;
         }
-        const names = new Set([...Object.keys(line.outcome), ...Object.keys(derived)]);
-        const fields = [...names]
-          .filter((name) => !sameValue(line.outcome[name], derived[name]))
-          .map((name) => ({
-            name,
-            stated: textOf(line.outcome[name]),
-            derived: textOf(derived[name]),
-          }));
+        const stated = line.outcome;
+        const isSilent = (name: string) => KEPT_LATER.has(name) && (stated[name] ?? null) === null;
+        const fields = MEMBERS.filter(
+          (name) => !isSilent(name) && !sameValue(stated[name], derived[name]),
+        ).map((name) => ({
+          name,
+          stated: textOf(stated[name]),
+          derived: textOf(derived[name]),
+        }));
         if (fields.length > 0) differs({ id, worker, date, file: path, problem: null, fields });
         else report.rederived += 1;
-        outcome = derived;
+        outcome = {
+          ...derived,
+          ...Object.fromEntries([...KEPT_LATER].map((name) => [name, stated[name]])),
+        };
       }
       if (line.isCurrent)
         derivedOf.set(

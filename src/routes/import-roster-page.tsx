@@ -234,7 +234,7 @@ export function Component() {
               {mayImport && (
                 <>
                   {asks.length > 0 && (
-                    <label className="choice">
+                    <label className="choice mt-3">
                       <input
                         type="checkbox"
                         checked={isConfirmed}

@@ -15,6 +15,7 @@ import { PaperForm } from "../features/letters/paper-form";
 import { letterQueries } from "../features/letters/queries";
 import { useUser } from "../features/session/session";
 import { useLocale } from "../lib/i18n";
+import { useMoveFocus } from "../lib/move-focus";
 import { paths } from "../paths";
 import "../styles/field-sheet.css";
 import "../styles/letters.css";
@@ -42,11 +43,12 @@ function Letter({ letter }: { letter: LetterView }) {
   const user = useUser();
   const timeZone = user.sites.find(({ id }) => id === letter.siteId)?.timeZone ?? "UTC";
   const note = letterStateNote(i18n, locale, letter, timeZone);
+  const [place, moveFocus] = useMoveFocus<HTMLDivElement>();
   const isOpen = ["to-print", "waiting", "sent", "failed"].includes(letter.state);
   const { withinDays, citation } = resultNoticeOf(letter.ruleSetKey);
   const ruleSet = ruleSetVersion(letter.ruleSetKey, letter.ruleSetVersion);
   return (
-    <div className="field-sheets">
+    <div className="field-sheets" ref={place}>
       <PageBody
         margin={
           <MarginNote title={i18n.t("When")}>
@@ -109,21 +111,12 @@ function Letter({ letter }: { letter: LetterView }) {
           }
           title={i18n.t("Letter of results: {name}", { name: letter.worker.name })}
           lead={
-            <>
+            <span data-said tabIndex={-1}>
               <b>{letterStateWord(i18n, letter.state)}</b>
               {note && `: ${note}`}. {letter.isLate && <b>{i18n.t("It is late.")}</b>}
-            </>
+            </span>
           }
-          actions={
-            isOpen && (
-              <Button
-                kind={["to-print", "failed"].includes(letter.state) ? "primary" : "plain"}
-                onClick={() => window.print()}
-              >
-                {i18n.t("Print")}
-              </Button>
-            )
-          }
+          actions={isOpen && <Button onClick={() => window.print()}>{i18n.t("Print")}</Button>}
         />
         <article className="field-sheet result-letter" lang={letter.language}>
           <div className="field-sheet-head">
@@ -142,7 +135,7 @@ function Letter({ letter }: { letter: LetterView }) {
         {isOpen && letter.can.acknowledge && (
           <div className="no-print">
             <Section title={i18n.t("Signed on paper")} id="paper">
-              <PaperForm letter={letter} today={localDateOf(new Date().toISOString(), timeZone)} />
+              <PaperForm letter={letter} today={localDateOf(new Date().toISOString(), timeZone)}  onSaved={() => moveFocus("[data-said]")} />
             </Section>
           </div>
         )}

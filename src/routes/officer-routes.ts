@@ -7,6 +7,7 @@ export const waitingRoutes: PageRoute[] = [
 ];
 
 export const officerRoutes: PageRoute[] = [
+  { path: paths.duties, lazy: () => import("./duties-page"), roles: ["officer", "auditor"] },
   { path: paths.findings, lazy: () => import("./findings-page"), roles: ["officer", "auditor"] },
   { path: paths.finding(":id"), lazy: () => import("./finding-page") },
   { path: paths.letters, lazy: () => import("./letters-page"), roles: ["officer", "auditor"] },

@@ -91,7 +91,7 @@ export function Component() {
               {state === undefined ? (
                 <span className="loading-line" />
               ) : state.head === null ? (
-                i18n.t("none yet")
+                i18n.t("There is none yet.")
               ) : (
                 <>
                   {i18n.t("number {number}, {at}", {

@@ -384,6 +384,11 @@ function WaitingMargin({
           />
         </MarginNote>
       )}
+      <MarginNote title={i18n.t("All that is due")}>
+        <p>
+          <TextLink to={paths.duties}>{i18n.t("List and calendar")}</TextLink>
+        </p>
+      </MarginNote>
       {isEmpty && (
         <MarginNote title={i18n.t("Nothing goes out")}>
           <p>

@@ -19,7 +19,12 @@ import { ColumnsTable } from "../features/year-file/columns-table";
 import { GapsTable } from "../features/year-file/gaps-table";
 import { MonthsList } from "../features/year-file/months-list";
 import { MonthsTable } from "../features/year-file/months-table";
-import { downloadYear, yearFileQueries } from "../features/year-file/queries";
+import {
+  downloadRecords,
+  downloadYear,
+  WORKERS_AS,
+  yearFileQueries,
+} from "../features/year-file/queries";
 import { useLocale } from "../lib/i18n";
 import { useIsPhone } from "../lib/use-is-phone";
 import { paths } from "../paths";
@@ -83,7 +88,7 @@ function YearFile({
   const today = localDateOf(new Date().toISOString(), site.timeZone);
   const asked = Number(search.get("year"));
   const year = Number.isInteger(asked) && asked > 1900 ? asked : Number(today.slice(0, 4));
-  const workers = search.get("workers") === "name" ? "name" : "number";
+  const workers = WORKERS_AS.find((one) => one === search.get("workers")) ?? "number";
   const yearOfSite = { siteId: site.id, year };
   const gaps = useQuery(yearFileQueries.gaps(yearOfSite));
   const isNothingThere = gaps.data?.years.length === 0;
@@ -110,7 +115,7 @@ function YearFile({
   };
 
   /** A browser saves an error under the file's name: so it is asked first whether the server would answer. */
-  async function download() {
+  async function download(kind: "csv" | "zip") {
     setIsAsking(true);
     setError(null);
     const { error: refused } = await gaps.refetch();
@@ -119,8 +124,13 @@ function YearFile({
       setError(refused);
       return;
     }
-    downloadYear(yearOfSite, workers, locale);
-    setSaid(i18n.t("The browser is taking both files. You may leave this page."));
+    if (kind === "zip") {
+      downloadRecords(yearOfSite, workers);
+      setSaid(i18n.t("The browser is taking the ZIP. You may leave this page."));
+    } else {
+      downloadYear(yearOfSite, workers, locale);
+      setSaid(i18n.t("The browser is taking both files. You may leave this page."));
+    }
   }
 
   return (
@@ -137,6 +147,13 @@ function YearFile({
               <p>
                 {i18n.t(
                   "Figures stand at full stored precision. A file that broke off lacks its last record, which counts the others.",
+                )}
+              </p>
+            </MarginNote>
+            <MarginNote title={i18n.t("The ZIP")}>
+              <p>
+                {i18n.t(
+                  "It holds all the year’s records, each result with its inputs, and a page that checks the file on a laptop without a network: hashes, and every result derived anew.",
                 )}
               </p>
             </MarginNote>
@@ -182,14 +199,18 @@ function YearFile({
             choices={[
               { value: "number", label: i18n.t("Employee number") },
               { value: "name", label: i18n.t("Name") },
+              { value: "pseudonym", label: i18n.t("Made-up name") },
             ]}
             onChange={(value) => choose("workers", value)}
           />
-          <Button kind="primary" isBusy={isAsking} onClick={() => void download()}>
+          <Button isBusy={isAsking} onClick={() => void download("zip")}>
+            {i18n.t("All records: ZIP that checks itself")}
+          </Button>
+          <Button kind="primary" isBusy={isAsking} onClick={() => void download("csv")}>
             {i18n.t("Year file: CSV and dictionary")}
           </Button>
         </div>
-        {error !== null && <Failed error={error} onRetry={() => void download()} />}
+        {error !== null && <Failed error={error} onRetry={() => void gaps.refetch()} />}
         <p className="year-said">
           <Status>{said}</Status>
         </p>

@@ -150,10 +150,10 @@ describe("a roster", () => {
       ({ line, field, code }: { line: number; field: string; code: string }) => [line, field, code],
     );
     expect(found).toEqual([
-      [6, "hired_on", "empty"],
+      [6, "hired_on", "first-day-needed"],
       [7, "employee_number", "worker-twice"],
       [8, "job", "job-unknown"],
-      [9, "crew_from", "empty"],
+      [9, "crew_from", "crew-day-needed"],
       [10, "left_on", "left-before-hired"],
       [11, "employee_number", "worker-of-another-site"],
     ]);

@@ -10,6 +10,8 @@ interface DayOverrides {
   governingRuleSet?: string;
   /** Results of the governing rule set's criteria. */
   criteria?: readonly object[];
+  /** Imported ones have no inputs. */
+  origin?: "computed" | "imported";
 }
 
 /** A judged day of a worker with its current result, without the shift it would rest on. */
@@ -25,7 +27,7 @@ export async function buildDay(
     siteId,
     workerId,
     date,
-    origin: "computed",
+    origin: overrides.origin ?? "computed",
     governingRuleSet: overrides.governingRuleSet ?? "eu-2003-10-ec",
     governingVersion: 1,
     methodVersion: 1,
@@ -42,7 +44,11 @@ export async function buildDay(
     decidingTaskId,
     hasProtector: "yes",
     criteria: JSON.stringify({ governing: overrides.criteria ?? [] }),
-    refs: "{}",
+    refs: JSON.stringify(
+      overrides.origin === "imported"
+        ? { governing: [overrides.governingRuleSet ?? "eu-2003-10-ec", 1], comparison: [] }
+        : {},
+    ),
   });
   await insert("days", {
     organizationId,

@@ -96,6 +96,12 @@ export function importIssueText(i18n: I18n, issue: ImportIssue): string {
       return i18n.t(
         "The site has no job of that name. Write it letter by letter, or leave the cell empty.",
       );
+    case "empty":
+      return i18n.t("This cell has to be filled in.");
+    case "first-day-needed":
+      return i18n.t("Nobody here has this number. Whoever is new needs the first day.");
+    case "crew-day-needed":
+      return i18n.t("It is another crew than before. Say from which day.");
     case "worker-of-another-site":
       return i18n.t("Somebody of another site has this number, and that site is not yours.");
     case "left-already":

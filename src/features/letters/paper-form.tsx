@@ -14,7 +14,15 @@ import { useOneAtATime } from "../../lib/one-at-a-time";
 import { useAcknowledgeOnPaper } from "./queries";
 
 /** The signed letter came back: the date beside the signature. */
-export function PaperForm({ letter, today }: { letter: LetterView; today: string }) {
+export function PaperForm({
+  letter,
+  today,
+  onSaved,
+}: {
+  letter: LetterView;
+  today: string;
+  onSaved: () => void;
+}) {
   const { i18n } = useLingui();
   const acknowledge = useAcknowledgeOnPaper(letter.id);
   const changeKey = useChangeKey();
@@ -32,7 +40,14 @@ export function PaperForm({ letter, today }: { letter: LetterView; today: string
         if (!begin()) return;
         acknowledge.mutate(
           { body, key: changeKey.keyFor(body) },
-          { onSuccess: changeKey.forget, onError: showIssuesOn(form, i18n), onSettled: end },
+          {
+            onSuccess: () => {
+              changeKey.forget();
+              onSaved();
+            },
+            onError: showIssuesOn(form, i18n),
+            onSettled: end,
+          },
         );
       })}
     >

@@ -1,7 +1,7 @@
 import type { I18n } from "@lingui/core";
 import { OCTAVE_BANDS_HZ } from "../../../shared/acoustics/types";
 import { formatDuration } from "../../../shared/format/duration";
-import { formatLevelChange } from "../../../shared/format/level";
+import { formatLevel } from "../../../shared/format/level";
 import { formatNumber } from "../../../shared/format/number";
 import type { Locale } from "../../../shared/i18n/index";
 import { isolate } from "../../../shared/i18n/isolate";
@@ -20,7 +20,7 @@ export function changeSentence(
       return change.bandsDb === null
         ? i18n.t("{task} quieter by {amount} dB at its source", {
             task: name(change.taskId),
-            amount: formatLevelChange(change.byDb ?? 0, locale),
+            amount: formatLevel(change.byDb ?? 0, locale),
           })
         : i18n.t("{task} quieter at its source by bands: {bands}", {
             task: name(change.taskId),
@@ -30,7 +30,7 @@ export function changeSentence(
                   ? [
                       i18n.t("{hz} Hz {amount} dB", {
                         hz: OCTAVE_BANDS_HZ[band] ?? 0,
-                        amount: formatLevelChange(byDb, locale),
+                        amount: formatLevel(byDb, locale),
                       }),
                     ]
                   : [],

@@ -1,5 +1,6 @@
 import { useLingui } from "@lingui/react";
 import { formatShortDate } from "../../../shared/format/date";
+import { formatLevel } from "../../../shared/format/level";
 import { isolate } from "../../../shared/i18n/isolate";
 import type { Tried } from "../../../shared/schemas/plan";
 import { DataTable } from "../../components/data-table";
@@ -84,7 +85,7 @@ export function OutcomeTable({
         {
           id: "ear",
           head: i18n.t("At the ear"),
-          kind: "figure",
+          kind: "right",
           hidesOnPhone: true,
           cell: ({ workerId, after }) => {
             const day = asDay(workerId, after);
@@ -110,7 +111,7 @@ export function OutcomeTable({
         {
           id: "outside",
           head: i18n.t("Without protection"),
-          kind: "figure",
+          kind: "right",
           hidesOnPhone: true,
           cell: ({ workerId, after }) => {
             const day = asDay(workerId, after);
@@ -144,11 +145,20 @@ export function OutcomeTable({
   );
 }
 
-function TriedLevels({ tried: { verdict, cannot } }: { tried: Tried }) {
+function TriedLevels({ tried: { verdict, cannot, figures } }: { tried: Tried }) {
   const { i18n } = useLingui();
+  const locale = useLocale();
   return (
     <span className="two-lines">
       <Verdict verdict={verdict} isQuiet />
+      {figures && (
+        <span className="beneath">
+          {i18n.t("at the ear {atEar}, outside {outside}", {
+            atEar: formatLevel(figures.atEarDb, locale, figures.atEarBound),
+            outside: formatLevel(figures.outsideDb, locale, figures.outsideBound),
+          })}
+        </span>
+      )}
       {cannot && (
         <span className="is-fault">
           {cannot.why === "not-enough-time"

@@ -270,6 +270,10 @@ export function actionWord(i18n: I18n, action: string): string {
       return i18n.t("Training put right");
     case "strike-training":
       return i18n.t("Training struck out");
+    case "make-calendar-feed":
+      return i18n.t("Calendar address made");
+    case "end-calendar-feed":
+      return i18n.t("Calendar address ended");
     case "hand-over-finding":
       return i18n.t("Handed over");
     case "escalate-finding":

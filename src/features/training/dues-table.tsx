@@ -59,7 +59,7 @@ export function DuesTable({
           head: i18n.t("Why"),
           cell: ({ exposedOn, ruleSetKey, siteName }) => (
             <span className="two-lines">
-              {i18n.t("in such noise since {date}, {site}", {
+              {i18n.t("in such noise, first within a year on {date}, {site}", {
                 date: formatShortDate(exposedOn, locale),
                 site: siteName,
               })}

@@ -57,13 +57,30 @@ export const yearFileQueries = {
     }),
 };
 
-export function yearFileAddress({ siteId, year }: YearOfSite, workers: "number" | "name"): string {
-  return `/api/exports/year.csv?${new URLSearchParams({ siteId, year: String(year), workers })}`;
+/** How workers are called in a file. */
+export const WORKERS_AS = ["number", "name", "pseudonym"] as const;
+export type WorkersAs = (typeof WORKERS_AS)[number];
+
+export function yearFileAddress(
+  { siteId, year }: YearOfSite,
+  workers: WorkersAs,
+  ending: "csv" | "zip" = "csv",
+): string {
+  return `/api/exports/year.${ending}?${new URLSearchParams({ siteId, year: String(year), workers })}`;
 }
 
 /** Hands both files to the browser, which asks where to put them and shows how far they are. */
-export function downloadYear(year: YearOfSite, workers: "number" | "name", language: Locale): void {
-  for (const address of [yearFileAddress(year, workers), dictionaryAddress(language)]) {
+export function downloadYear(year: YearOfSite, workers: WorkersAs, language: Locale): void {
+  download([yearFileAddress(year, workers), dictionaryAddress(language)]);
+}
+
+/** The same for the ZIP with all records, which brings its own dictionary. */
+export function downloadRecords(year: YearOfSite, workers: WorkersAs): void {
+  download([yearFileAddress(year, workers, "zip")]);
+}
+
+function download(addresses: readonly string[]): void {
+  for (const address of addresses) {
     const link = document.createElement("a");
     link.href = address;
     link.download = "";

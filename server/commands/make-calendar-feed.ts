@@ -1,0 +1,52 @@
+import { createHash, randomBytes } from "node:crypto";
+import { recordAudit } from "../lib/audit";
+import { execute } from "../lib/db";
+import type { Actor } from "../lib/policy";
+
+/** What is kept of a secret. */
+export const secretHash = (secret: string): Buffer => createHash("sha256").update(secret).digest();
+
+/** The organization that a secret was made in, which it begins with; null where it is none of ours. */
+export function organizationOfSecret(secret: string): string | null {
+  const bytes = Buffer.from(secret, "base64url");
+  if (bytes.length !== 40) return null;
+  const hex = bytes.subarray(0, 16).toString("hex");
+  return hex.replace(/^(.{8})(.{4})(.{4})(.{4})(.{12})$/, "$1-$2-$3-$4-$5");
+}
+
+/** A private address for the actor's own calendar; one that there was before ends here. Gives its secret, once. */
+export async function makeCalendarFeed(actor: Actor): Promise<string> {
+  await endFeed(actor);
+  const secret = Buffer.concat([
+    Buffer.from(actor.organizationId.replaceAll("-", ""), "hex"),
+    randomBytes(24),
+  ]).toString("base64url");
+  await execute(
+    "INSERT INTO calendar_feeds (organization_id, user_id, secret_hash) VALUES ($1, $2, $3)",
+    [actor.organizationId, actor.userId, secretHash(secret)],
+  );
+  await recordAudit(actor, {
+    action: "make-calendar-feed",
+    subjectKind: "user",
+    subjectId: actor.userId,
+    values: {},
+  });
+  return secret;
+}
+
+const endFeed = (actor: Actor): Promise<number> =>
+  execute(
+    "UPDATE calendar_feeds SET revoked_at = now() WHERE user_id = $1 AND revoked_at IS NULL",
+    [actor.userId],
+  );
+
+/** The address leads nowhere from now on. */
+export async function endCalendarFeed(actor: Actor): Promise<void> {
+  if ((await endFeed(actor)) === 0) return;
+  await recordAudit(actor, {
+    action: "end-calendar-feed",
+    subjectKind: "user",
+    subjectId: actor.userId,
+    values: {},
+  });
+}
