@@ -135,7 +135,11 @@ function Letter({ letter }: { letter: LetterView }) {
         {isOpen && letter.can.acknowledge && (
           <div className="no-print">
             <Section title={i18n.t("Signed on paper")} id="paper">
-              <PaperForm letter={letter} today={localDateOf(new Date().toISOString(), timeZone)}  onSaved={() => moveFocus("[data-said]")} />
+              <PaperForm
+                letter={letter}
+                today={localDateOf(new Date().toISOString(), timeZone)}
+                onSaved={() => moveFocus("[data-said]")}
+              />
             </Section>
           </div>
         )}

@@ -13,12 +13,6 @@ export const officerRoutes: PageRoute[] = [
   { path: paths.letters, lazy: () => import("./letters-page"), roles: ["officer", "auditor"] },
   { path: paths.letter(":id"), lazy: () => import("./letter-page"), roles: ["officer", "auditor"] },
   { path: paths.workers, lazy: () => import("./workers-page"), roles: ["officer", "auditor"] },
-  { path: paths.trainings, lazy: () => import("./training-page"), roles: ["officer", "auditor"] },
-  {
-    path: paths.training(":id"),
-    lazy: () => import("./training-session-page"),
-    roles: ["officer", "auditor"],
-  },
   { path: paths.newWorker, lazy: () => import("./worker-form-page"), roles: ["officer"] },
   { path: paths.changeWorker(":id"), lazy: () => import("./worker-form-page"), roles: ["officer"] },
   { path: paths.worker(":id"), lazy: () => import("./worker-page") },

@@ -51,4 +51,10 @@ export const registerRoutes: PageRoute[] = [
   { path: paths.crew(":id"), lazy: () => import("./crew-page") },
   { path: paths.roster, lazy: () => import("./import-roster-page"), roles: ["officer"] },
   { path: paths.imports, lazy: () => import("./import-page"), roles: ["officer"] },
+  { path: paths.trainings, lazy: () => import("./training-page"), roles: ["officer", "auditor"] },
+  {
+    path: paths.training(":id"),
+    lazy: () => import("./training-session-page"),
+    roles: ["officer", "auditor"],
+  },
 ];

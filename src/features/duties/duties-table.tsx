@@ -1,6 +1,7 @@
 import { useLingui } from "@lingui/react";
 import { dutyKindWord, dutyWord } from "../../../shared/findings/duty-words";
 import { dutyOf } from "../../../shared/rule-sets/duties";
+import { resultNoticeOf } from "../../../shared/rule-sets/result-notice";
 import type { DutyItem } from "../../../shared/schemas/duty";
 import { DataTable, type DataTableProps } from "../../components/data-table";
 import { FindingDue } from "../../components/finding-due";
@@ -12,6 +13,7 @@ import { dutyPath } from "./duty-link";
 function citationOf({ kind, criterion, ruleSetKey }: DutyItem): string | null {
   if (kind === "training" || kind === "monitoring")
     return ruleSetKey && (dutyOf(ruleSetKey, kind)?.citation ?? null);
+  if (kind === "notice") return ruleSetKey && resultNoticeOf(ruleSetKey).citation;
   if (kind !== "finding" || !criterion) return null;
   const [key = "", criterionId = ""] = criterion.split(":");
   const duty = dutyOf(key, "act-at-once");

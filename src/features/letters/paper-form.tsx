@@ -24,7 +24,7 @@ export function PaperForm({
   onSaved: () => void;
 }) {
   const { i18n } = useLingui();
-  const acknowledge = useAcknowledgeOnPaper(letter.id);
+  const acknowledge = useAcknowledgeOnPaper(letter.id, onSaved);
   const changeKey = useChangeKey();
   const { begin, end } = useOneAtATime();
   const form = useSchemaForm(PaperAcknowledgement, {
@@ -40,14 +40,7 @@ export function PaperForm({
         if (!begin()) return;
         acknowledge.mutate(
           { body, key: changeKey.keyFor(body) },
-          {
-            onSuccess: () => {
-              changeKey.forget();
-              onSaved();
-            },
-            onError: showIssuesOn(form, i18n),
-            onSettled: end,
-          },
+          { onSuccess: changeKey.forget, onError: showIssuesOn(form, i18n), onSettled: end },
         );
       })}
     >

@@ -34,8 +34,8 @@ export const letterQueries = {
     }),
 };
 
-/** A letter that was signed on paper. */
-export function useAcknowledgeOnPaper(id: string) {
+/** A letter that was signed on paper. `onSaved` also where the form goes with it. */
+export function useAcknowledgeOnPaper(id: string, onSaved: () => void) {
   const client = useQueryClient();
   return useMutation({
     mutationFn: ({ body, key }: { body: { signedOn: string }; key: string }) =>
@@ -45,6 +45,7 @@ export function useAcknowledgeOnPaper(id: string) {
         idempotencyKey: key,
       }),
     onSuccess: async (letter) => {
+      onSaved();
       client.setQueryData(letterQueries.one(id).queryKey, letter);
       await Promise.all([
         client.invalidateQueries({ queryKey: [...letterQueries.all, "list"] }),
