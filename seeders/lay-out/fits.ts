@@ -75,7 +75,9 @@ export async function layOutFits(demo: Demo): Promise<void> {
             methodSdDb: METHOD_SD_DB,
           },
           confidencePct: 84,
-          needDb: (await workerNoise(worker, testedOn)).need.needDb,
+          // Before the demo begins no rules are in force that a need could come from.
+          needDb:
+            testedOn < calendar.first ? null : (await workerNoise(worker, testedOn)).need.needDb,
           note: isLoose ? "The left cup stands off at the temple arm of the glasses." : "",
         }),
       );
