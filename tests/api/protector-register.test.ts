@@ -105,7 +105,7 @@ describeEndpoint({
   not: "supervisor",
   event: "add-protector-combination",
   bad: { body: { bands: { ...bands, sdDb: same(-3) } } },
-  badField: "bands.sdDb",
+  badField: "bands.sdDb.1",
   call: async ({ organizationId }) => {
     const { inner, outer } = await buildPair(organizationId);
     return {
