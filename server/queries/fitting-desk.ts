@@ -10,7 +10,7 @@ import { type Actor, abilities, visible } from "../lib/policy";
 import type { Worker } from "../models/worker";
 import { fitPolicy, issuePolicy } from "../policies";
 import { listFitTests } from "./fit-tests";
-import { fitsOf, noisesOf, offersAt, pairsOf, requiredGear } from "./register-offers";
+import { fitsOf, noisesOf, offersAt, pairsOf, requiredGear, wornMinOf } from "./register-offers";
 import { FIT_POLICY } from "./sites";
 import { type WorkerNoise, workerNoise } from "./worker-noise";
 
@@ -79,7 +79,7 @@ async function candidates(
     day && need.outsideDb !== null
       ? noisesOf(
           day.shifts.flatMap(({ tasks }) => tasks),
-          governing.protection.adequacy,
+          governing,
           day,
         )
       : [];
@@ -94,7 +94,7 @@ async function candidates(
       noises,
       personalTargetDb: worker.personalTargetDb,
       wornGear,
-      wornMin: noises.reduce((sum, { durationMin }) => sum + durationMin, 0),
+      wornMin: wornMinOf(noises),
       fits: fits.get(worker.id) ?? new Map(),
     });
   const singles = rank(offers);

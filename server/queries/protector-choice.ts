@@ -13,7 +13,15 @@ import { only } from "../lib/only";
 import { type Actor, visible } from "../lib/policy";
 import { workerPolicy } from "../policies";
 import { gridTasks } from "./day-grid";
-import { bareTask, fitsOf, noisesOf, offersAt, pairsOf, requiredGear } from "./register-offers";
+import {
+  bareTask,
+  fitsOf,
+  noisesOf,
+  offersAt,
+  pairsOf,
+  requiredGear,
+  wornMinOf,
+} from "./register-offers";
 import { settingsInForce } from "./site-settings";
 
 /** Whose noise protectors are compared for. */
@@ -62,7 +70,7 @@ export async function protectorChoice(
     return durationMin === undefined ? [] : [bareTask(task, durationMin)];
   });
   // A task by itself was chosen because of its noise, whatever its level.
-  const noises = noisesOf(tasks, adequacy, { site: settings, mustWear: subject.kind === "task" });
+  const noises = noisesOf(tasks, governing, { site: settings, mustWear: subject.kind === "task" });
   const gear = await requiredGear(noises.map(({ taskId }) => taskId));
   const singles = await offersAt(actor, siteId, date);
   const pairs = await pairsOf(singles, date);
@@ -76,7 +84,7 @@ export async function protectorChoice(
       noises,
       personalTargetDb: null,
       wornGear: gear,
-      wornMin: noises.reduce((sum, { durationMin }) => sum + durationMin, 0),
+      wornMin: wornMinOf(noises),
       fits: new Map(),
     });
   const wearers = await wearersOf(actor, subject, date, governing.protection);

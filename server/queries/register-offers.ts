@@ -1,4 +1,6 @@
 import { normalShare } from "../../shared/acoustics/distributions";
+import { lawOf } from "../../shared/acoustics/exchange-law";
+import { outsideCriterion } from "../../shared/acoustics/outside-criterion";
 import { isInNoise } from "../../shared/acoustics/protection/at-ear";
 import {
   isWornInside,
@@ -139,15 +141,28 @@ export const bareTask = (
   wornIsShiftWide: false,
 });
 
-export type Noise = TimedTask & { level: NonNullable<TimedTask["level"]> };
+export type Noise = TimedTask & { level: NonNullable<TimedTask["level"]>; isBare: boolean };
 
-/** What asks for a protector: by EN 458 the tasks in noise; where the shift is judged, all of it. */
+/**
+ * What asks for a protector: the tasks in noise. Where the shift as a whole is judged, others add to it bare, as far as
+ * they reach the rule's threshold: below it they count for nothing where nothing is worn.
+ */
 export function noisesOf(
   tasks: readonly TimedTask[],
-  adequacy: string,
+  governing: RuleSetVersion,
   { site, mustWear }: Pick<DayInput, "site" | "mustWear">,
 ): Noise[] {
-  return tasks
-    .filter((task): task is Noise => task.level !== null && task.durationMin > 0)
-    .filter((task) => adequacy === "appendix-b" || mustWear || isInNoise(task, site.wearFromDb));
+  const { thresholdDb } = lawOf(outsideCriterion(governing));
+  return tasks.flatMap((task): Noise[] => {
+    const { level, durationMin } = task;
+    if (level === null || durationMin <= 0) return [];
+    if (mustWear || isInNoise(task, site.wearFromDb)) return [{ ...task, level, isBare: false }];
+    const adds =
+      governing.protection.adequacy === "appendix-b" && level.levelDb >= (thresholdDb ?? 0);
+    return adds ? [{ ...task, level, isBare: true }] : [];
+  });
 }
+
+/** For how long a protector is worn in these, minutes. */
+export const wornMinOf = (noises: readonly Noise[]): number =>
+  noises.reduce((sum, { durationMin, isBare }) => sum + (isBare ? 0 : durationMin), 0);

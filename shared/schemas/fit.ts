@@ -146,6 +146,8 @@ export const Candidate = z.object({
   scaleWord: z
     .enum(["too-little", "just-enough", "good", "strong-side", "too-much", "enough"])
     .nullable(),
+  /** The task that EN 458's word is about. */
+  scaleIn: z.string().nullable(),
   /** By how far the level at the ear stays under the target at the confidence compared, dB. */
   marginDb: z.number().nullable(),
   /** Users protected by that much, percent; null: the share that the rule's own method protects. */
@@ -161,6 +163,7 @@ export const Candidate = z.object({
     "first",
     "compatibility",
     "adequacy",
+    "underprotection",
     "overprotection",
     "margin",
     "fit",

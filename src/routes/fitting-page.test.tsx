@@ -32,6 +32,7 @@ const candidate = (modelId: string, name: string, kind: string, more: object = {
   wornDb: 77.6,
   wornIn: "Chipping",
   scaleWord: null,
+  scaleIn: null,
   twaDb: null,
   marginDb: 5.2,
   marginSharePct: 95,
@@ -312,6 +313,19 @@ describe("the fitting desk", () => {
     await user.type(within(left).getByLabelText("Trial 1"), "70");
     expect(within(form).getByRole("alert")).toHaveTextContent(/more than an ear can have/);
   });
+
+  test("a trial that is no number is named at its ear, and nothing is rated or sent meanwhile", async () => {
+    const user = userEvent.setup();
+    open(paths.fittingOf(worker));
+    const form = await screen.findByRole("form", { name: "Test the fit" });
+    const left = within(form).getByRole("group", { name: "Left ear" });
+    await user.type(within(left).getByLabelText("Trial 1"), "x");
+    await user.type(within(left).getByLabelText("Trial 2"), "20");
+    expect(within(form).queryByText(/^PAR/)).toBeNull();
+    await user.click(within(form).getByRole("button", { name: "Record the fit" }));
+    expect(await within(left).findByText("This is not a number.")).toBeVisible();
+    expect(sent).toEqual([]);
+  }, 30_000);
 
   test("nothing typed is lost over an error", async () => {
     const user = userEvent.setup();

@@ -366,6 +366,35 @@ describe("a rule that has no word for too much: EN 458's stands beside it", () =
     ]);
   });
 
+  // 104 dB for an hour: the US number less 7 leaves 86 with 25, which EN 458 calls too little over 85; with 31 80.
+  // By Appendix B both are enough: a TWA of 90 may reach the ear (29 CFR 1910.95 App. B). The desk is bare, and below the
+  // threshold of 80 it adds nothing to the shift; the packing at 82 does: 60 min of 80 and 240 of 82 are 80.1.
+  test("too little in one task comes after what is not; what is bare is not worn, and adds to the shift", () => {
+    const loud = { name: "Blow-down", level: buildLevel(104), durationMin: 60 };
+    const bare = { name: "Packing", level: buildLevel(82), durationMin: 240, isBare: true };
+    const found = new ProtectorChoice(
+      [offer("r25", { usRatingDb: 25 }), offer("r31", { usRatingDb: 31 })],
+      US.protection,
+      US_LAW,
+      85,
+    ).for({ ...wearer(104), noises: [loud, bare] });
+    expect(
+      found.map(({ modelId, word, scaleWord, scaleIn, decidedBy }) => [
+        modelId,
+        word,
+        scaleWord,
+        scaleIn,
+        decidedBy,
+      ]),
+    ).toEqual([
+      ["r31", "enough", "good", "Blow-down", "first"],
+      ["r25", "enough", "too-little", "Blow-down", "underprotection"],
+    ]);
+    const dose = (60 * 2 ** ((80 - 90) / 5) + 240 * 2 ** ((82 - 90) / 5)) / 480;
+    // 16.61 as the rule prints it is 5 / lg 2, rounded.
+    expect(found[0]?.twaDb).toBeCloseTo(90 + (5 / Math.log10(2)) * Math.log10(dose), 9);
+  });
+
   test("too little stays behind all of them", () => {
     const weak = offer("r9", { usRatingDb: 9 });
     expect(ranked([weak, ...offers.slice(2)], 85).at(-1)).toEqual([

@@ -62,6 +62,8 @@ export interface Wearer {
     readonly name: string;
     readonly level: TaskLevel;
     readonly durationMin: number;
+    /** Nothing is worn in it, and it still adds to the shift that Appendix B judges. Absent: worn. */
+    readonly isBare?: boolean;
   }[];
   /** A stricter target of this worker's own, dB. */
   readonly personalTargetDb: number | null;
@@ -77,6 +79,7 @@ export type DecidedBy =
   | "first"
   | "compatibility"
   | "adequacy"
+  | "underprotection"
   | "overprotection"
   | "margin"
   | "fit"
@@ -101,6 +104,8 @@ export interface RankedProtector {
   readonly twaDb: number | null;
   /** EN 458's word beside it where the rule has no scale for too much; null: not asked for, or nothing known. */
   readonly scaleWord: ProtectorWord | null;
+  /** The noise that EN 458's word is about. */
+  readonly scaleIn: string | null;
   /** By how far the level at the ear stays under the target at the confidence compared, dB. */
   readonly marginDb: number | null;
   /** Users protected by that much, percent; null: the share that the rule's own method protects. */
@@ -137,6 +142,7 @@ interface Noise {
   readonly name: string;
   readonly levelDb: number;
   readonly durationMin: number;
+  readonly isBare: boolean;
   /** A-weighted powers by band, NaN where not known; null without a spectrum. */
   readonly powers: Float64Array | null;
   readonly lcLaDb: number | null;
@@ -148,8 +154,8 @@ interface Noise {
  * some sums.
  *
  * The order is lexicographic: what gear, missing data or the archive exclude comes last; then the word while worn
- * (active part off, which a battery can't take away); where the rule has no word for too much, what is too much by EN 458
- * after what is not; then the lower-confidence margin under the target, not rounded
+ * (active part off, which a battery can't take away); where the rule's word is of the whole shift, what is too little in
+ * a task by EN 458 after what is not, and so what is too much; then the lower-confidence margin under the target, not rounded
  * (where all are too much: the least of it); own fit; whether the battery lasts; stock; name. Each says which comparison
  * put it behind the one before.
  *
@@ -227,18 +233,25 @@ export class ProtectorChoice {
     targetDb: number | null,
     scaleDb: number | null,
   ): AtEar | null {
-    if (noises.length === 0) return null;
+    if (noises.every(({ isBare }) => isBare)) return null;
     const { rule, law } = this;
     const isByShift = rule.adequacy === "appendix-b";
     let wornSum = 0;
     let likeSum = 0;
     let lowSum = 0;
     let deciding: AtEar | null = null;
-    let scaled: Worded | null = null;
+    let scaled: (Worded & { wornIn: string }) | null = null;
     let likeMarginDb = Number.POSITIVE_INFINITY;
     let lowMarginDb = Number.POSITIVE_INFINITY;
     let hasLower = true;
     for (const noise of noises) {
+      if (noise.isBare) {
+        const sum = noise.durationMin * weightOf(noise.levelDb, law);
+        wornSum += sum;
+        likeSum += sum;
+        lowSum += sum;
+        continue;
+      }
       const governing = reductionDb(prepared, noise, rule, fit);
       if (governing === null) return null;
       const wornDb = noise.levelDb - Math.max(0, governing.reductionDb);
@@ -250,7 +263,8 @@ export class ProtectorChoice {
           deciding = { ...NO_MARGIN, word: null, wornDb, wornIn: noise.name };
         if (scaleDb !== null) {
           const word = en458Word(wornDb, scaleDb);
-          if (scaled === null || decidesBefore(word, wornDb, scaled)) scaled = { word, wornDb };
+          if (scaled === null || decidesBefore(word, wornDb, scaled))
+            scaled = { word, wornDb, wornIn: noise.name };
         }
         wornSum += noise.durationMin * weightOf(wornDb, law);
         likeSum += noise.durationMin * weightOf(likeDb, law);
@@ -272,10 +286,12 @@ export class ProtectorChoice {
     const twaOf = (sum: number) => levelFactor(law) * Math.log10(sum / law.referenceMin);
     const twaDb = twaOf(wornSum);
     const scaleWord = scaled?.word ?? null;
-    if (targetDb === null) return { ...deciding!, twaDb, scaleWord };
+    const scaleIn = scaled?.wornIn ?? null;
+    if (targetDb === null) return { ...deciding!, twaDb, scaleWord, scaleIn };
     return {
       ...deciding!,
       scaleWord,
+      scaleIn,
       word: appendixBWord(twaDb, targetDb),
       twaDb,
       likeMarginDb: targetDb - twaOf(likeSum),
@@ -287,6 +303,7 @@ export class ProtectorChoice {
 const NO_MARGIN = {
   twaDb: null,
   scaleWord: null,
+  scaleIn: null,
   likeMarginDb: null,
   lowMarginDb: null,
 } as const;
@@ -300,6 +317,7 @@ interface AtEar extends Worded {
   readonly wornIn: string;
   /** See `RankedProtector`. */
   readonly scaleWord: ProtectorWord | null;
+  readonly scaleIn: string | null;
   readonly twaDb: number | null;
   /** Under the target at the share that the rule's method protects, dB; null: no target. */
   readonly likeMarginDb: number | null;
@@ -359,6 +377,7 @@ const MARGIN_PLACES = 2 * (MIDDLE + PLACES_PER_DB);
 const COMPARISONS = [
   ["compatibility", 2],
   ["adequacy", 5],
+  ["underprotection", 2],
   ["overprotection", 2],
   ["margin", MARGIN_PLACES],
   ["fit", 3],
@@ -374,8 +393,10 @@ function placeOf(
 ): number {
   const word = atEar?.word ?? null;
   const isTooMuchBeside = word === "enough" && atEar?.scaleWord === "too-much";
+  const isTooLittleBeside = word === "enough" && atEar?.scaleWord === "too-little";
   let place = excludedBy === null ? 0 : 1;
   place = 5 * place + (word === null ? ADEQUACY_UNKNOWN : ADEQUACY[word]);
+  place = 2 * place + (isTooLittleBeside ? 1 : 0);
   place = 2 * place + (isTooMuchBeside ? 1 : 0);
   place = MARGIN_PLACES * place + marginStep(marginDb, isTooMuchBeside ? "too-much" : word);
   place = 3 * place + (fit === null || fit.hasPassed === null ? 1 : fit.hasPassed ? 0 : 2);
@@ -429,6 +450,7 @@ function shownAs(
     wornIn: atEar?.wornIn ?? null,
     twaDb: atEar?.twaDb ?? null,
     scaleWord: atEar?.scaleWord ?? null,
+    scaleIn: atEar?.scaleIn ?? null,
     marginDb: marginOf(judged, hasLower),
     marginSharePct: hasLower ? LOWER_CONFIDENCE_PCT : null,
     lastFit: fit && { parDb: fit.parDb, hasPassed: fit.hasPassed, testedOn: fit.testedOn },
@@ -505,13 +527,13 @@ function factorsOf(attenuationDb: OctaveBandValues): Float64Array {
   );
 }
 
-function toNoise({ name, level, durationMin }: Wearer["noises"][number]): Noise {
+function toNoise({ name, level, durationMin, isBare = false }: Wearer["noises"][number]): Noise {
   const { octaveBandsDb, levelDb, lcMinusLaDb: statedLcLaDb } = level;
   const powers = octaveBandsDb && new Float64Array(octaveBandsDb.length);
   if (powers)
     for (const [band, bandDb] of octaveBandsDb.entries())
       powers[band] = bandDb === null ? Number.NaN : 10 ** ((bandDb + A_WEIGHTING_DB[band]!) / 10);
-  return { name, levelDb, durationMin, powers, lcLaDb: lcMinusLaDb(level), statedLcLaDb };
+  return { name, levelDb, durationMin, isBare, powers, lcLaDb: lcMinusLaDb(level), statedLcLaDb };
 }
 
 interface Reductions {

@@ -96,7 +96,7 @@ export function CandidatesTable({
       id: "word",
       head: i18n.t("While worn"),
       unit: "dB",
-      cell: ({ word, wornDb, wornIn, twaDb, scaleWord }) => (
+      cell: ({ word, wornDb, wornIn, twaDb, scaleWord, scaleIn }) => (
         <ProtectorWord
           word={word}
           beneath={
@@ -106,8 +106,9 @@ export function CandidatesTable({
                   `${wornIn ?? ""} ${formatLevel(wornDb, locale)}`.trim(),
                   twaDb !== null && i18n.t("shift {twa}", { twa: formatLevel(twaDb, locale) }),
                   scaleWord !== null &&
-                    i18n.t("by EN 458 {word}", {
+                    i18n.t("by EN 458 {word} in {task}", {
                       word: withinSentence(protectorWordText(i18n, scaleWord), locale),
+                      task: scaleIn ?? wornIn ?? "",
                     }),
                 ]
                   .filter(Boolean)

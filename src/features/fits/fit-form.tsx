@@ -11,6 +11,7 @@ import {
   SubmitButton,
   TextAreaField,
   TextField,
+  Unreadable,
   useSchemaForm,
 } from "../../components/form";
 import { FormProblem } from "../../components/form-problem";
@@ -79,6 +80,9 @@ export function FitForm({
     },
   });
   const values = form.watch();
+  const isReadable = ![...(values.leftDb ?? []), ...(values.rightDb ?? [])].some(
+    (trial: unknown) => trial instanceof Unreadable,
+  );
   const { modelId: chosenId, method: chosenMethod } = values;
   const sizes = sizesOf(chosenId);
   const isOwnFigure = values.methodSdDb !== METHOD_SD_DB[chosenMethod];
@@ -204,8 +208,9 @@ export function FitForm({
         onLeave={() => void submit()}
       />
       <FitRatingLine
-        leftDb={numbersIn(values.leftDb)}
-        rightDb={numbersIn(values.rightDb)}
+        // What can't be read isn't left out: nothing is rated until it is mended.
+        leftDb={isReadable ? numbersIn(values.leftDb) : []}
+        rightDb={isReadable ? numbersIn(values.rightDb) : []}
         methodSdDb={typeof values.methodSdDb === "number" ? values.methodSdDb : 0}
         confidencePct={confidencePct}
         needDb={needDb}

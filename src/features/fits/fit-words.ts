@@ -110,6 +110,8 @@ export function decidedWord(i18n: I18n, decidedBy: Candidate["decidedBy"]): stri
       return i18n.t("by what is worn with it");
     case "adequacy":
       return i18n.t("by its word while worn");
+    case "underprotection":
+      return i18n.t("enough for the shift, but by EN 458 too little in a task");
     case "overprotection":
       return i18n.t("enough, but by EN 458 it protects too much");
     case "margin":

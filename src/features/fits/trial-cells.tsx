@@ -32,11 +32,12 @@ export function TrialCells<Values extends FieldValues, Output>({
   const cells = Math.min(MOST_TRIALS, Math.max(LEAST_CELLS, withoutTail(values).length + 1));
   const found = get(form.formState.errors, name) as
     | { message?: string; root?: { message?: string } }
-    | ({ message?: string } | undefined)[]
     | undefined;
-  const error = Array.isArray(found)
-    ? found.find((one) => one?.message)?.message
-    : (found?.message ?? found?.root?.message);
+  // The cells' own faults stand under their places.
+  const ofCells = Object.values(found ?? {}) as ({ message?: string } | string | undefined)[];
+  const error =
+    found?.message ??
+    ofCells.flatMap((one) => (typeof one === "object" ? (one.message ?? []) : []))[0];
 
   function onKeyDown(event: KeyboardEvent<HTMLInputElement>, at: number) {
     if (event.key !== "Enter") return;
