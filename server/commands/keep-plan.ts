@@ -1,20 +1,9 @@
 import { randomUUID } from "node:crypto";
 import { METHOD_VERSION } from "../../shared/acoustics/methods";
 import type { RuleSetVersion } from "../../shared/acoustics/types";
-import {
-  goalsOf,
-  judgeTried,
-  type TriedFigures,
-  tryChanges,
-} from "../../shared/planning/try-changes";
+import { goalsOf, judgeTried, tryChanges } from "../../shared/planning/try-changes";
 import { ruleSetVersion } from "../../shared/rule-sets";
-import type {
-  PlanChange,
-  PlanInput,
-  PlanOutcome,
-  Tried,
-  TrySubject,
-} from "../../shared/schemas/plan";
+import type { PlanChange, PlanInput, PlanOutcome, TrySubject } from "../../shared/schemas/plan";
 import type { ProblemIssue } from "../../shared/schemas/problem";
 import { recordAudit } from "../lib/audit";
 import { execute } from "../lib/db";
@@ -139,20 +128,8 @@ function outcomeOf(
       workerId: id,
       workerName: name,
       employeeNumber,
-      before: toTried(before[index]!),
-      after: toTried(after[index]!),
+      before: before[index]!,
+      after: after[index]!,
     })),
-  };
-}
-
-function toTried({ verdict, figures, cannot }: TriedFigures): Tried {
-  if (figures === null) return { verdict, outsideDb: null, atEarDb: null, figures: null, cannot };
-  const { decidingTaskId: _, dosePct: __, doseBound: ___, ...rest } = figures;
-  return {
-    verdict,
-    outsideDb: rest.outsideDb,
-    atEarDb: rest.atEarDb,
-    figures: rest,
-    cannot,
   };
 }

@@ -72,20 +72,6 @@ export const ROSTER_COLUMNS: readonly ImportColumn[] = [
   },
 ];
 
-interface Known {
-  id: string;
-  siteId: string;
-  isOurs: boolean;
-  employeeNumber: string;
-  name: string;
-  hiredOn: string;
-  leftOn: string | null;
-  employer: string;
-  employerName: string | null;
-  language: string;
-  jobId: string | null;
-}
-
 export interface RosterFacts {
   siteId: string;
   employeeNumber: string;
@@ -96,6 +82,12 @@ export interface RosterFacts {
   employerName: string | null;
   language: string;
   jobId: string | null;
+}
+
+/** Somebody whom the organization has already. */
+interface Known extends RosterFacts {
+  id: string;
+  isOurs: boolean;
 }
 
 export interface RosterEntry {

@@ -14,7 +14,7 @@ import type {
   TimedTask,
   Zone,
 } from "../../shared/acoustics/types";
-import { levelOf, mainLimit, ruleSetVersion } from "../../shared/rule-sets";
+import { levelOf, mainLimit } from "../../shared/rule-sets";
 import type { AtEarView, NominalDayAtEar } from "../../shared/schemas/at-ear";
 import { todayAt } from "../lib/calendar";
 import { rows } from "../lib/db";
@@ -52,8 +52,7 @@ export async function atEar({ task, inner, outer, worker }: Asked): Promise<AtEa
   );
   const date = todayAt(site.timeZone);
   const settings = await settingsInForce(task.siteId, date);
-  const ruleSet = ruleSetVersion(settings.governingRuleSet, settings.ruleSetVersion);
-  if (!ruleSet) throw new Error("a rule set in force has a version");
+  const { governing: ruleSet } = settings;
   const protectors = await dataOf(outer ? [inner, outer] : [inner]);
   const own = worker ? await knownOf(worker.id, inner.id, outer?.id ?? null, date) : null;
   const protection: Protection = {

@@ -4,7 +4,6 @@ import { buildDayInput, type DayContext } from "../../shared/day/build-day-input
 import { summarizeDay } from "../../shared/day/summarize-day";
 import { foldOrders, ORDER_KINDS } from "../../shared/findings/orders";
 import { formatTime } from "../../shared/format/date";
-import { ruleSetVersion } from "../../shared/rule-sets";
 import type { CrewSheetRow, CrewSheetView } from "../../shared/schemas/crew";
 import type { FindingKind, FindingState } from "../../shared/schemas/finding";
 import { todayAt } from "../lib/calendar";
@@ -113,8 +112,7 @@ async function expectedDays(
   members: Awaited<ReturnType<typeof crewMembers>>,
   settings: Awaited<ReturnType<typeof settingsInForce>>,
 ) {
-  const governing = ruleSetVersion(settings.governingRuleSet, settings.ruleSetVersion);
-  if (!governing) throw new Error("a rule set in force is known");
+  const { governing } = settings;
   const ids = `{${members.map(({ id }) => id).join(",")}}`;
   const assignments = await assignmentsOn(ids, date);
   const worn = await lastWearing(ids, date);

@@ -1,5 +1,6 @@
 import { lawAtEar } from "../../shared/acoustics/outside-criterion";
 import { ProtectorChoice, type WornGear } from "../../shared/acoustics/protection/choose-protector";
+import { noisesOf, wornMinOf } from "../../shared/acoustics/protection/noises";
 import type { DayInput } from "../../shared/acoustics/types";
 import { besideScaleDb } from "../../shared/rule-sets";
 import type { Candidate, FitPolicyInput, FittingDesk } from "../../shared/schemas/fit";
@@ -10,7 +11,7 @@ import { type Actor, abilities, visible } from "../lib/policy";
 import type { Worker } from "../models/worker";
 import { fitPolicy, issuePolicy } from "../policies";
 import { listFitTests } from "./fit-tests";
-import { fitsOf, noisesOf, offersAt, pairsOf, requiredGear, wornMinOf } from "./register-offers";
+import { fitsOf, offersAt, pairsOf, requiredGear } from "./register-offers";
 import { FIT_POLICY } from "./sites";
 import { type WorkerNoise, workerNoise } from "./worker-noise";
 

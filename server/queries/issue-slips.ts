@@ -1,6 +1,5 @@
 import { evaluateDay } from "../../shared/acoustics/day";
 import { assignmentFor, buildDayInput } from "../../shared/day/build-day-input";
-import { ruleSetVersion } from "../../shared/rule-sets";
 import type { IssueSlip } from "../../shared/schemas/choice";
 import { todayAt } from "../lib/calendar";
 import { rows } from "../lib/db";
@@ -65,8 +64,7 @@ export async function issueSlips(actor: Actor, workerIds: readonly string[]): Pr
 async function slipsAt(siteId: string, people: readonly PersonRow[]): Promise<IssueSlip[]> {
   const date = todayAt(people[0]!.timeZone);
   const settings = await settingsInForce(siteId, date);
-  const governing = ruleSetVersion(settings.governingRuleSet, settings.ruleSetVersion);
-  if (!governing) throw new Error("a rule set in force has a version");
+  const { governing } = settings;
   const ids = `{${people.map(({ id }) => id).join(",")}}`;
   const assignments = groupBy(await assignmentsOn(ids, date), ({ workerId }) => workerId);
   const devices = groupBy(await devicesOn(ids, date), ({ workerId }) => workerId);

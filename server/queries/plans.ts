@@ -1,4 +1,5 @@
 import type { z } from "zod";
+import { countVerdicts } from "../../shared/planning/try-changes";
 import type {
   PlanChange,
   PlanFilter,
@@ -60,11 +61,8 @@ export async function listPlans(
 
 function toRow(actor: Actor, one: Found): z.input<typeof PlanRow> {
   const { scopeKind, scopeId, scopeName, siteId, siteName, outcome, ...facts } = one;
-  const count = (when: "before" | "after") => {
-    const counts = { under: 0, over: 0, "cant-tell-yet": 0, "not-assessed": 0 };
-    for (const worker of outcome.workers) counts[worker[when].verdict] += 1;
-    return counts;
-  };
+  const count = (when: "before" | "after") =>
+    countVerdicts(outcome.workers.map((worker) => worker[when]));
   const worst = (levels: (number | null)[]) =>
     levels.reduce<number | null>(
       (high, level) => (level === null ? high : Math.max(high ?? level, level)),

@@ -4,8 +4,9 @@ import {
   type RankedProtector,
   type WornGear,
 } from "../../shared/acoustics/protection/choose-protector";
+import { noisesOf, wornMinOf } from "../../shared/acoustics/protection/noises";
 import type { RuleSetVersion, TimedTask } from "../../shared/acoustics/types";
-import { besideScaleDb, ruleSetVersion } from "../../shared/rule-sets";
+import { besideScaleDb } from "../../shared/rule-sets";
 import type { ProtectorChoiceView, Wearer } from "../../shared/schemas/choice";
 import { todayAt } from "../lib/calendar";
 import { row, rows } from "../lib/db";
@@ -13,15 +14,7 @@ import { only } from "../lib/only";
 import { type Actor, visible } from "../lib/policy";
 import { workerPolicy } from "../policies";
 import { gridTasks } from "./day-grid";
-import {
-  bareTask,
-  fitsOf,
-  noisesOf,
-  offersAt,
-  pairsOf,
-  requiredGear,
-  wornMinOf,
-} from "./register-offers";
+import { bareTask, fitsOf, offersAt, pairsOf, requiredGear } from "./register-offers";
 import { settingsInForce } from "./site-settings";
 
 /** Whose noise protectors are compared for. */
@@ -56,8 +49,7 @@ export async function protectorChoice(
   );
   const date = todayAt(site.timeZone);
   const settings = await settingsInForce(siteId, date);
-  const governing = ruleSetVersion(settings.governingRuleSet, settings.ruleSetVersion);
-  if (!governing) throw new Error("a rule set in force has a version");
+  const { governing } = settings;
   const { adequacy, targetDb } = governing.protection;
 
   const longestMin = subject.kind === "task" ? await longestNominalMin(subject.id) : null;

@@ -1,7 +1,4 @@
 import { normalShare } from "../../shared/acoustics/distributions";
-import { lawOf } from "../../shared/acoustics/exchange-law";
-import { outsideCriterion } from "../../shared/acoustics/outside-criterion";
-import { isInNoise } from "../../shared/acoustics/protection/at-ear";
 import {
   isWornInside,
   isWornOver,
@@ -11,12 +8,7 @@ import {
   type WornGear,
 } from "../../shared/acoustics/protection/choose-protector";
 import { fitRating } from "../../shared/acoustics/protection/fit-rating";
-import type {
-  BandAttenuation,
-  DayInput,
-  RuleSetVersion,
-  TimedTask,
-} from "../../shared/acoustics/types";
+import type { BandAttenuation, RuleSetVersion, TimedTask } from "../../shared/acoustics/types";
 import type { KnownTask } from "../../shared/day/build-day-input";
 import type { FitFacts } from "../../shared/schemas/fit";
 import type { ProtectorUse } from "../../shared/schemas/protector";
@@ -140,29 +132,3 @@ export const bareTask = (
   wornPct: 100,
   wornIsShiftWide: false,
 });
-
-export type Noise = TimedTask & { level: NonNullable<TimedTask["level"]>; isBare: boolean };
-
-/**
- * What asks for a protector: the tasks in noise. Where the shift as a whole is judged, others add to it bare, as far as
- * they reach the rule's threshold: below it they count for nothing where nothing is worn.
- */
-export function noisesOf(
-  tasks: readonly TimedTask[],
-  governing: RuleSetVersion,
-  { site, mustWear }: Pick<DayInput, "site" | "mustWear">,
-): Noise[] {
-  const { thresholdDb } = lawOf(outsideCriterion(governing));
-  return tasks.flatMap((task): Noise[] => {
-    const { level, durationMin } = task;
-    if (level === null || durationMin <= 0) return [];
-    if (mustWear || isInNoise(task, site.wearFromDb)) return [{ ...task, level, isBare: false }];
-    const adds =
-      governing.protection.adequacy === "appendix-b" && level.levelDb >= (thresholdDb ?? 0);
-    return adds ? [{ ...task, level, isBare: true }] : [];
-  });
-}
-
-/** For how long a protector is worn in these, minutes. */
-export const wornMinOf = (noises: readonly Noise[]): number =>
-  noises.reduce((sum, { durationMin, isBare }) => sum + (isBare ? 0 : durationMin), 0);

@@ -1,3 +1,4 @@
+import type { RuleSetVersion } from "../../shared/acoustics/types";
 import { ruleSetInForce } from "../../shared/rule-sets";
 import { row } from "../lib/db";
 import { AppError } from "../lib/errors";
@@ -10,6 +11,8 @@ export interface SettingsInForce {
   creditsActivePart: boolean;
   usesUncertainty: boolean;
   ruleSetVersion: number;
+  /** The version in force of the governing rule set. */
+  governing: RuleSetVersion;
 }
 
 /**
@@ -18,7 +21,7 @@ export interface SettingsInForce {
  * @throws AppError not-computed, where the site had chosen no rule set yet.
  */
 export async function settingsInForce(siteId: string, date: string): Promise<SettingsInForce> {
-  const found = await row<Omit<SettingsInForce, "ruleSetVersion">>(
+  const found = await row<Omit<SettingsInForce, "ruleSetVersion" | "governing">>(
     `SELECT id, governing_rule_set AS "governingRuleSet", comparison_rule_sets AS "comparisonRuleSets", wear_from_db AS "wearFromDb",
        credits_active_part AS "creditsActivePart", uses_uncertainty AS "usesUncertainty"
      FROM site_settings WHERE site_id = :siteId AND effective_from <= :date ORDER BY effective_from DESC, number DESC LIMIT 1`,
@@ -26,5 +29,5 @@ export async function settingsInForce(siteId: string, date: string): Promise<Set
   );
   const ruleSet = found ? ruleSetInForce(found.governingRuleSet, date) : undefined;
   if (!found || !ruleSet) throw new AppError("not-computed", 409);
-  return { ...found, ruleSetVersion: ruleSet.version };
+  return { ...found, ruleSetVersion: ruleSet.version, governing: ruleSet };
 }

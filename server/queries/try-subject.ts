@@ -1,5 +1,4 @@
 import type { TriedWorker, TryContext } from "../../shared/planning/try-changes";
-import { ruleSetVersion } from "../../shared/rule-sets";
 import type { PlanScope, TrySubject } from "../../shared/schemas/plan";
 import { todayAt } from "../lib/calendar";
 import { row, rows } from "../lib/db";
@@ -60,8 +59,7 @@ export async function trySubject(
   );
   const date = on ?? todayAt(site?.timeZone ?? "UTC");
   const settings = await settingsInForce(siteId, date);
-  const governing = ruleSetVersion(settings.governingRuleSet, settings.ruleSetVersion);
-  if (!governing) throw new Error("a rule set in force has a version");
+  const { governing } = settings;
   const found = await rows<WorkerRow>(
     `SELECT w.id, w.name, w.employee_number AS "employeeNumber", w.must_wear AS "mustWear", w.personal_target_db AS "personalTargetDb",
        coalesce((SELECT json_agg(json_build_object('taskId', j.task_id, 'durationMin', j.duration_min) ORDER BY j.position)

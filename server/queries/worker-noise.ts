@@ -1,7 +1,6 @@
 import { evaluateDay } from "../../shared/acoustics/day";
 import { attenuationNeed } from "../../shared/acoustics/protection/attenuation-need";
 import type { DayInput, RuleSetVersion, TimedTask } from "../../shared/acoustics/types";
-import { ruleSetVersion } from "../../shared/rule-sets";
 import type { AttenuationNeed } from "../../shared/schemas/fit";
 import { rows } from "../lib/db";
 import type { Worker } from "../models/worker";
@@ -39,8 +38,7 @@ interface Asking {
  */
 export async function workerNoise(worker: Person, date: string): Promise<WorkerNoise> {
   const settings = await settingsInForce(worker.siteId, date);
-  const governing = ruleSetVersion(settings.governingRuleSet, settings.ruleSetVersion);
-  if (!governing) throw new Error("a rule set in force has a version");
+  const { governing } = settings;
   const site = {
     wearFromDb: settings.wearFromDb,
     creditsActivePart: settings.creditsActivePart,

@@ -2,6 +2,7 @@ import { evaluateDay } from "../acoustics/day";
 import { lawAtEar } from "../acoustics/outside-criterion";
 import { isInNoise } from "../acoustics/protection/at-ear";
 import { ProtectorChoice } from "../acoustics/protection/choose-protector";
+import { noisesOf, wornMinOf } from "../acoustics/protection/noises";
 import type {
   DayEvaluation,
   DayInput,
@@ -55,8 +56,8 @@ const MOST_PLANS = 40;
 
 /**
  * What to give a worker so that this day would have been right, worn throughout in every task in noise: one protector
- * for the whole day where one is enough, the first of them in the order of `ProtectorChoice`; else the fewest by task. Where the worker's own would do if they were worn
- * throughout, or nothing on the register does, it says what is left. Null where the rule has no word for a protector,
+ * for the whole day where one is enough, the first of them in the order of `ProtectorChoice`; else the fewest by task.
+ * Where the worker's own would do if they were worn throughout, or nothing on the register does, it says what is left. Null where the rule has no word for a protector,
  * or no task of the day is in noise.
  */
 export function proposeRemedy(
@@ -102,7 +103,7 @@ class Search {
     private readonly input: DayInput,
     private readonly governing: RuleSetVersion,
   ) {
-    this.noises = noisesOf(input);
+    this.noises = noiseByTask(input);
     this.hasTaskWords = governing.protection.adequacy === "en-458";
   }
 
@@ -206,27 +207,21 @@ class Search {
   private firstChosen(options: readonly Option[]): Option | undefined {
     const { input, governing } = this;
     if (options.length < 2) return options[0];
-    const { protection } = governing;
-    const noises = input.shifts.flatMap(({ tasks }) =>
-      tasks.flatMap((task) => {
-        const { name, level, durationMin } = task;
-        const counts =
-          protection.adequacy === "appendix-b" ||
-          input.mustWear ||
-          isInNoise(task, input.site.wearFromDb);
-        return level !== null && durationMin > 0 && counts ? [{ name, level, durationMin }] : [];
-      }),
+    const noises = noisesOf(
+      input.shifts.flatMap(({ tasks }) => tasks),
+      governing,
+      input,
     );
     const [first] = new ProtectorChoice(
       options.map(({ inner, outer }) => ({ ...NOTHING_BESIDE, inner, outer, name: inner.name })),
-      protection,
+      governing.protection,
       lawAtEar(governing),
       besideScaleDb(governing),
     ).for({
       noises,
       personalTargetDb: input.personalTargetDb,
       wornGear: [],
-      wornMin: noises.reduce((sum, { durationMin }) => sum + durationMin, 0),
+      wornMin: wornMinOf(noises),
       fits: new Map(),
     });
     return options.find(({ inner }) => inner.modelId === first?.modelId);
@@ -443,7 +438,7 @@ function compare(a: readonly number[], b: readonly number[]): number {
   return 0;
 }
 
-function noisesOf(input: DayInput): Noise[] {
+function noiseByTask(input: DayInput): Noise[] {
   const byTask = new Map<string, TimedTask[]>();
   for (const task of input.shifts.flatMap(({ tasks }) => tasks)) {
     if (task.durationMin === 0) continue;

@@ -13,7 +13,7 @@ import type {
 import { buildDayInput, type KnownAssignment, type KnownTask } from "../day/build-day-input";
 import { summarizeDay } from "../day/summarize-day";
 import { levelOf, mainLimit } from "../rule-sets";
-import type { PlanChange } from "../schemas/plan";
+import type { PlanChange, Tried } from "../schemas/plan";
 
 /** A worker's nominal day, with what is assigned and measured on them. */
 export interface TriedWorker {
@@ -43,7 +43,6 @@ export interface TryContext {
 export type CannotChange = "not-enough-time" | "not-in-the-day";
 
 export interface TriedDay {
-  workerId: string;
   /** Null where a change can't be made to this day. */
   input: DayInput | null;
   cannot: { changeIndex: number; why: CannotChange } | null;
@@ -119,7 +118,6 @@ export function tryChanges(
   });
   const models = new Map(context.models.map((model) => [model.modelId, model]));
   return [...drafts.values()].map(({ worker, tasks: entered, assignments, cannot }) => ({
-    workerId: worker.id,
     cannot,
     input: cannot
       ? null
@@ -241,30 +239,37 @@ function move(draft: Draft, fromId: string, toId: string, minutes: number): bool
   return true;
 }
 
-export interface TriedFigures {
-  workerId: string;
-  cannot: TriedDay["cannot"];
-  figures: ReturnType<typeof summarizeDay> | null;
-  /** Against the goal. */
-  verdict: Verdict;
-}
-
-/** What the record's own engine makes of tried days, and each worker's verdict on one criterion, the goal. */
+/**
+ * What the record's own engine makes of tried days: each worker's figures and verdict on one criterion, the goal. In the
+ * order of the days.
+ */
 export function judgeTried(
   days: readonly TriedDay[],
   governing: RuleSetVersion,
   goal: string,
-): TriedFigures[] {
-  return days.map(({ workerId, input, cannot }) => {
-    if (!input) return { workerId, cannot, figures: null, verdict: "not-assessed" };
+): Tried[] {
+  return days.map(({ input, cannot }) => {
+    if (!input)
+      return { verdict: "not-assessed", outsideDb: null, atEarDb: null, figures: null, cannot };
     const evaluation = evaluateDay(input, governing, []);
-    return {
-      workerId,
-      cannot,
-      figures: summarizeDay(input, evaluation, governing),
-      verdict: verdictOn(evaluation, governing, goal),
-    };
+    const {
+      decidingTaskId: _,
+      dosePct: __,
+      doseBound: ___,
+      ...figures
+    } = summarizeDay(input, evaluation, governing);
+    const { outsideDb, atEarDb } = figures;
+    const verdict = verdictOn(evaluation, governing, goal);
+    return { verdict, outsideDb, atEarDb, figures, cannot };
   });
+}
+
+export type VerdictCounts = Record<Verdict, number>;
+
+export function countVerdicts(judged: readonly { verdict: Verdict }[]): VerdictCounts {
+  const counts = { under: 0, over: 0, "cant-tell-yet": 0, "not-assessed": 0 };
+  for (const { verdict } of judged) counts[verdict] += 1;
+  return counts;
 }
 
 const verdictOn = (evaluation: DayEvaluation, governing: RuleSetVersion, goal: string): Verdict =>
@@ -315,7 +320,7 @@ export function* fewestChanges(
       ),
       governing,
       goal,
-    ).flatMap(({ workerId, verdict }) => (verdict === "under" ? [] : [workerId]));
+    ).flatMap(({ verdict }, index) => (verdict === "under" ? [] : [workers[index]!.id]));
   let done = 0;
   for (let size = 0; size <= changes.length; size++) {
     for (const chosen of choices(changes.length, size)) {

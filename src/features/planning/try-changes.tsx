@@ -5,14 +5,14 @@ import { z } from "zod";
 import type { RuleSetVersion } from "../../../shared/acoustics/types";
 import { isolate } from "../../../shared/i18n/isolate";
 import {
+  countVerdicts,
   goalsOf,
   judgeTried,
   MOST_SEARCHED,
-  type TriedFigures,
   tryChanges,
 } from "../../../shared/planning/try-changes";
 import { ruleSetVersion } from "../../../shared/rule-sets";
-import { PlanChange, type Tried, type TrySubject } from "../../../shared/schemas/plan";
+import { PlanChange, type TrySubject } from "../../../shared/schemas/plan";
 import { Button } from "../../components/button";
 import { Empty } from "../../components/empty";
 import { FilterRow, FilterSelect } from "../../components/filter-row";
@@ -27,7 +27,7 @@ import { useTypedText } from "../../lib/keep-typed";
 import { paths } from "../../paths";
 import { ChangeForm } from "./change-form";
 import { changeSentence } from "./change-words";
-import { CountsLine, countVerdicts } from "./counts-line";
+import { CountsLine } from "./counts-line";
 import { OutcomeTable } from "./outcome-table";
 import { useKeepPlan } from "./queries";
 import { useFewest } from "./use-fewest";
@@ -106,8 +106,8 @@ function Tried_({ subject, governing }: { subject: TrySubject; governing: RuleSe
     workerId: id,
     workerName: name,
     employeeNumber,
-    before: toTried(before[index]),
-    after: toTried(after[index]),
+    before: before[index]!,
+    after: after[index]!,
   }));
 
   function findFewest() {
@@ -251,17 +251,6 @@ function Tried_({ subject, governing }: { subject: TrySubject; governing: RuleSe
       )}
     </>
   );
-}
-
-function toTried(judged: TriedFigures | undefined): Tried {
-  const { verdict = "not-assessed", figures = null, cannot = null } = judged ?? {};
-  return {
-    verdict,
-    outsideDb: figures?.outsideDb ?? null,
-    atEarDb: figures?.atEarDb ?? null,
-    figures,
-    cannot,
-  };
 }
 
 const KeepFields = z.object({ name: z.string().trim().min(1).max(200) });
