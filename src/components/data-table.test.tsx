@@ -1,6 +1,7 @@
 // @vitest-environment jsdom
 import { cleanup, render, screen, within } from "@testing-library/react";
 import userEvent from "@testing-library/user-event";
+import { useState } from "react";
 import { afterEach, expect, test, vi } from "vitest";
 import { TestLanguage } from "../lib/test-i18n";
 import { type DataColumn, DataTable, type DataTableProps } from "./data-table";
@@ -103,4 +104,42 @@ test("an empty table says why; more rows come when they are asked for", async ()
   show({ more: { hasMore: true, isLoading: false, onMore } });
   await userEvent.click(screen.getByRole("button", { name: "and more" }));
   expect(onMore).toHaveBeenCalledTimes(1);
+});
+
+/** Its columns are made anew at every tick, as a form's are. */
+function Ticked() {
+  const [ticked, setTicked] = useState<readonly string[]>([]);
+  return (
+    <TestLanguage>
+      <DataTable
+        caption="Who"
+        rows={rows}
+        rowKey={(row) => row.name}
+        columns={[
+          {
+            id: "name",
+            head: "Worker",
+            cell: ({ name }: Row) => (
+              <input
+                type="checkbox"
+                aria-label={name}
+                checked={ticked.includes(name)}
+                onChange={() => setTicked([...ticked, name])}
+              />
+            ),
+          },
+        ]}
+      />
+    </TestLanguage>
+  );
+}
+
+test("a box in a cell keeps the focus where every tick makes the columns anew", async () => {
+  render(<Ticked />);
+  const user = userEvent.setup();
+  const box = screen.getByRole("checkbox", { name: "Okwuosa" });
+  box.focus();
+  await user.keyboard(" ");
+  expect(screen.getByRole("checkbox", { name: "Okwuosa" })).toHaveProperty("checked", true);
+  expect(document.activeElement).toBe(box);
 });

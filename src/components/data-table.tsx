@@ -133,8 +133,6 @@ export function DataTable<Row extends RowData>({
         enableSorting: column.sortValue !== undefined,
         sortUndefined: "last",
         sortFn: (a, b, id) => compare(a.getValue<SortKey>(id), b.getValue<SortKey>(id), collator),
-        header: () => column.head,
-        cell: ({ row }) => column.cell(row.original),
       }),
     );
   }, [columns, i18n.locale]);
@@ -209,13 +207,13 @@ export function DataTable<Row extends RowData>({
                           className="sort-button"
                           onClick={() => sortColumn(column.id)}
                         >
-                          <table.FlexRender header={header} />
+                          {column.head}
                           {order && (
                             <span aria-hidden="true">{order === "ascending" ? " ↑" : " ↓"}</span>
                           )}
                         </button>
                       ) : (
-                        <table.FlexRender header={header} />
+                        column.head
                       )}
                       {column.unit && <span className="unit block">{column.unit}</span>}
                     </th>
@@ -255,7 +253,7 @@ export function DataTable<Row extends RowData>({
                             data-column={column.id}
                             className={cellClass(column)}
                           >
-                            <table.FlexRender cell={cell} />
+                            {column.cell(row.original)}
                           </th>
                         ) : (
                           <td
@@ -264,7 +262,7 @@ export function DataTable<Row extends RowData>({
                             data-head={typeof column.head === "string" ? column.head : undefined}
                             className={cellClass(column)}
                           >
-                            <table.FlexRender cell={cell} />
+                            {column.cell(row.original)}
                           </td>
                         );
                       })}
