@@ -134,6 +134,23 @@ describe("what to do", () => {
     expect(say(day(), [protector()], [finding({ kind: "reading-missing" })])).toEqual(worn);
   });
 
+  test("another protector for another task answers nothing", () => {
+    const inChipping = finding({
+      ...tooLittle,
+      facts: { ...tooLittle.facts, taskName: "Chipping" },
+    });
+    const given = (useName: string) =>
+      protector({ id: "given", use: "task", useName, fromDate: "2026-12-01" });
+    const asks = say(day(), [protector()], [inChipping]);
+    expect(say(day(), [protector(), given("Grinding")], [inChipping])).toEqual(asks);
+    expect(say(day(), [protector(), given("Chipping")], [inChipping])).not.toContain(asks[0]);
+    // A limit is of the whole day: what was worn before may still be too little somewhere.
+    const over = finding({ ...tooLittle, kind: "over-limit-at-ear", facts: {} });
+    const asksOver = say(day(), [protector()], [over]);
+    expect(say(day(), [protector(), given("Grinding")], [over])).toEqual(asksOver);
+    expect(say(day(), [protector({ fromDate: "2026-12-01" })], [over])).not.toContain(asksOver[0]);
+  });
+
   test("a fit is told of what is worn, and not of what was only tried", () => {
     const failed = finding({
       kind: "fit-failed",

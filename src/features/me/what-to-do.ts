@@ -1,5 +1,5 @@
 import type { I18n } from "@lingui/core";
-import { protectorNames } from "../../../shared/findings/facts";
+import { protectorNames, textOf } from "../../../shared/findings/facts";
 import { foldOrders, ORDER_KINDS } from "../../../shared/findings/orders";
 import { workerSentence } from "../../../shared/findings/worker-sentence";
 import type { Locale } from "../../../shared/i18n/index";
@@ -37,13 +37,24 @@ const ABOUT_FIT: ReadonlySet<FindingKind> = new Set<FindingKind>(["fit-failed", 
 const placeOf = (kind: FindingKind) =>
   ORDER_KINDS.includes(kind) ? ORDER_KINDS.indexOf(kind) : ORDER_KINDS.length;
 
+/** What may be worn in a task: one for the task itself, else whatever is for an area, which may be its own, or everywhere. */
+function wornIn(protectors: readonly OwnProtector[], taskName: string): OwnProtector[] {
+  const ofTask = protectors.filter(({ use, useName }) => use === "task" && useName === taskName);
+  return ofTask.length > 0 ? ofTask : protectors.filter(({ use }) => use !== "task");
+}
+
 /**
  * What the open findings ask of the worker, most serious first, one for whatever is put right by what is worn. A finding
- * that others have done their part for asks for nothing, nor does one about a protector once another was given.
+ * that others have done their part for asks for nothing, nor does one about a protector once another was given for the
+ * task that it is about; where it is about the whole day, once nothing of before is worn any more.
  */
 function asked({ findings, protectors, lastDay }: Known): OwnFinding[] {
-  const isAnswered = ({ kind, lastDate }: OwnFinding) =>
-    ABOUT_PROTECTOR.has(kind) && protectors.some(({ fromDate }) => fromDate > lastDate);
+  const isAnswered = ({ kind, lastDate, facts }: OwnFinding) => {
+    if (!ABOUT_PROTECTOR.has(kind)) return false;
+    const taskName = textOf(facts, "taskName");
+    const concerned = taskName === null ? protectors : wornIn(protectors, taskName);
+    return concerned.length > 0 && concerned.every(({ fromDate }) => fromDate > lastDate);
+  };
   // What was only tried, or is worn no longer, asks for nothing.
   const isWorn = ({ kind, useKey }: OwnFinding) =>
     !ABOUT_FIT.has(kind) || protectors.some(({ innerModelId }) => innerModelId === useKey);
