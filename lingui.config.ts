@@ -1,162 +1,18 @@
 import { defineConfig } from "@lingui/cli";
 import { formatter } from "@lingui/format-po";
 
-const tests = ["**/*.test.ts", "**/*.test.tsx"];
-const pages = (...names: string[]) => names.map((name) => `src/routes/${name}.tsx`);
-const features = (...names: string[]) => names.map((name) => `src/features/${name}/**`);
-
-/** Shared parts that no page of a worker shows: their words go with those of the rules, which every other page loads. */
-const beyondWorkers = [
-  "band-fields",
-  "change-preview",
-  "combobox-field",
-  "conflict-dialog",
-  "data-table",
-  "day-figures",
-  "drop-strip",
-  "file-input",
-  "finding-due",
-  "finding-words",
-  "gear-field",
-  "meter-settings",
-  "notice-line",
-  "record-form",
-  "reviewed-change",
-  "spectrum-chart",
-  "spectrum-field",
-]
-  .map((name) => `src/components/${name}.tsx`)
-  .concat(["register-words", "role-word", "run-words"].map((name) => `src/lib/${name}.ts`));
-
-/**
- * The catalogue in parts, so that a page loads the words it needs (see shared/i18n/index.ts and src/router.tsx and src/routes/desk-pages.tsx): `base` is
- * everybody's and all that a worker's phone gets. A page whose part is not loaded would show untranslated text.
- */
-const parts: Record<string, string[]> = {
-  base: [
-    "src/components/**",
-    "src/lib/**",
-    "src/router.tsx",
-    ...features("session", "me"),
-    "src/features/training/worker-training.tsx",
-    ...pages(
-      "me-page",
-      "sign-in",
-      "signed-in",
-      "signed-out",
-      "no-access",
-      "acknowledge-page",
-      "not-found",
-      "route-error",
-    ),
-    "shared/findings/**",
-    "shared/format/**",
-    "shared/problems/**",
-    "shared/day/**",
-  ],
-  people: [
-    ...features("crew-sheet", "year-file", "trail", "people", "sites-admin"),
-    ...pages(
-      "crew-sheet-page",
-      "year-file-page",
-      "trail-page",
-      "trail-check-page",
-      "people-page",
-      "person-page",
-      "sites-page",
-      "site-form-page",
-    ),
-  ],
-  office: [
-    ...features(
-      "waiting",
-      "findings",
-      "workers",
-      "results",
-      "runs",
-      "notices",
-      "letters",
-      "training",
-      "duties",
-      "assignments",
-      "fits",
-      "microphone-check",
-    ),
-    ...pages(
-      "waiting-page",
-      "finding*-page",
-      "letter*-page",
-      "worker*-page",
-      "training*-page",
-      "duties-page",
-      "result-page",
-      "shift-page",
-      "run*-page",
-      "microphone-*-page",
-    ),
-  ],
-  rules: ["shared/acoustics/**", "shared/rule-sets/**", ...beyondWorkers],
-  day: [...features("day-entry"), ...pages("day*-page")],
-  register: [
-    ...features("at-ear", "signals", "planning"),
-    ...features("protectors", "rules", "areas", "tasks", "jobs", "crews", "instruments", "imports"),
-    ...features("wearing", "stock", "choosing"),
-    ...pages(
-      "protector*",
-      "fit*-page",
-      "wearing*-page",
-      "stock-page",
-      "choose-page",
-      "slips-page",
-      "plan*-page",
-      "try-changes-page",
-      "zone-sign-page",
-      "rules-page",
-      "site-rules-page",
-      "areas-page",
-      "task*-page",
-      "jobs-page",
-    ),
-    ...pages(
-      "crew-page",
-      "crews-page",
-      "instruments-page",
-      "import-page",
-      "import-roster-page",
-      "register-frame",
-    ),
-  ],
-  measuring: [
-    "shared/recordings/**",
-    ...features("surveys", "outings", "histories", "recordings", "groups"),
-    ...pages(
-      "to-measure-page",
-      "workplace-changes-page",
-      "survey*-page",
-      "field-sheet-page",
-      "sample-page",
-      "out-and-back-page",
-      "histor*-page",
-      "recording*-page",
-      "group-page",
-      "instrument-page",
-      "measuring-frame",
-    ),
-  ],
-  mail: ["server/**"],
-};
-
+/** One file a language; English is in the sources. A language more: its name here, then `npm run i18n`. */
 export default defineConfig({
   sourceLocale: "en",
-  locales: ["en", "de"],
-  fallbackLocales: { default: "en" },
-  catalogs: Object.entries(parts).map(([part, include]) => ({
-    path: `<rootDir>/shared/i18n/${part}-{locale}`,
-    include,
-    exclude: part === "base" ? [...tests, ...beyondWorkers] : tests,
-  })),
+  locales: ["de", "es", "pl"],
+  catalogs: [
+    {
+      path: "<rootDir>/shared/i18n/{locale}",
+      include: ["src", "server", "shared"],
+      exclude: ["**/*.test.ts", "**/*.test.tsx", "shared/i18n/compiled/**"],
+    },
+  ],
   // Without origins and line numbers a moved line changes no catalogue.
   format: formatter({ origins: false, lineNumbers: false, explicitIdAsDefault: true }),
   orderBy: "messageId",
-  compileNamespace: "ts",
 });

@@ -2,7 +2,10 @@ import { defineConfig } from "vitest/config";
 
 const published = ["./tests/setup/printed.ts"];
 
-/** Parts of `npm test`; each also runs alone: npx vitest run --project api. */
+/**
+ * Parts of `npm test`; each also runs alone: npx vitest run --project api. Tests of pure functions share their modules
+ * (`isolate: false`): loading the engine anew for each file took longer than the tests.
+ */
 export default defineConfig({
   test: {
     globalSetup: "./tests/setup/catalogues.ts",
@@ -16,6 +19,7 @@ export default defineConfig({
           ],
           setupFiles: published,
           testTimeout: 30_000,
+          isolate: false,
         },
       },
       {
@@ -24,6 +28,7 @@ export default defineConfig({
           include: ["tests/published/**/*.test.ts"],
           setupFiles: published,
           testTimeout: 30_000,
+          isolate: false,
         },
       },
       {

@@ -1,65 +1,40 @@
 import { existsSync, readdirSync, readFileSync } from "node:fs";
 import { dirname, join, relative, resolve } from "node:path";
 import { describe, expect, test } from "vitest";
-import config from "../lingui.config";
+import { partOfSource, textsInSource } from "../scripts/lib/catalogue-parts.mjs";
 
 const root = resolve(import.meta.dirname, "..");
 const folder = join(root, "shared/i18n");
 
-const read = new Map<string, Map<string, string>>();
+const joinLines = (quoted: string) =>
+  quoted
+    .trim()
+    .split("\n")
+    .map((line) => JSON.parse(line) as string)
+    .join("");
 
-/** Texts of a catalogue by id. */
+/** Texts of a language by id. */
 function readCatalogue(file: string): Map<string, string> {
-  const known = read.get(file);
-  if (known) return known;
-  const texts = new Map<string, string>();
-  read.set(file, texts);
-  const text = readFileSync(join(folder, file), "utf8");
-  for (const [, id = "", message = ""] of text.matchAll(
+  const entries = readFileSync(join(folder, file), "utf8").matchAll(
     /^msgid ((?:"(?:[^"\\]|\\.)*"\n)+)msgstr ((?:"(?:[^"\\]|\\.)*"\n?)+)/gm,
-  )) {
-    const join_ = (quoted: string) =>
-      quoted
-        .trim()
-        .split("\n")
-        .map((line) => JSON.parse(line) as string)
-        .join("");
-    if (join_(id) !== "") texts.set(join_(id), join_(message));
-  }
-  return texts;
-}
-
-const partOf = (path: string): string => /i18n\/(\w+)-\{locale\}/.exec(path)?.[1] ?? "";
-const toPattern = (glob: string) =>
-  new RegExp(
-    `^${glob.replace(/[.]/g, "\\.").replace(/\*\*/g, "§").replace(/\*/g, "[^/]*").replace(/§/g, ".*")}$`,
   );
-const parts = (config.catalogs ?? []).map(({ path, include, exclude = [] }) => ({
-  part: partOf(path),
-  patterns: include.map(toPattern),
-  without: exclude.map(toPattern),
-}));
-const partsOf = (file: string) =>
-  parts
-    .filter(
-      ({ patterns, without }) =>
-        patterns.some((pattern) => pattern.test(file)) &&
-        !without.some((pattern) => pattern.test(file)),
-    )
-    .map(({ part }) => part);
+  const texts = [...entries].map(
+    ([, id = "", message = ""]) => [joinLines(id), joinLines(message)] as const,
+  );
+  return new Map(texts.filter(([id]) => id !== ""));
+}
 
 const sources = ["src", "server", "shared"].flatMap((top) =>
   readdirSync(join(root, top), { recursive: true, encoding: "utf8" })
+    .map((name) => join(top, name))
     .filter(
-      (name) => /\.tsx?$/.test(name) && !/\.test\.tsx?$/.test(name) && !name.startsWith("i18n/"),
-    )
-    .map((name) => join(top, name)),
+      (name) =>
+        /\.tsx?$/.test(name) &&
+        !/\.test\.tsx?$/.test(name) &&
+        !name.startsWith("shared/i18n/compiled/"),
+    ),
 );
-const literal = /(?:i18n\.(?:t|_)\(\s*|\/\*\s*i18n\s*\*\/\s*)("(?:[^"\\]|\\.)*")/g;
-const textsIn = (file: string) =>
-  [...readFileSync(join(root, file), "utf8").matchAll(literal)].map(
-    ([, text = '""']) => JSON.parse(text) as string,
-  );
+const textsIn = (file: string) => textsInSource(readFileSync(join(root, file), "utf8"));
 
 function importsOf(file: string): string[] {
   const text = readFileSync(join(root, file), "utf8");
@@ -80,17 +55,27 @@ function closure(file: string, seen = new Set<string>()): Set<string> {
   return seen;
 }
 
+/** The worker's page, and what reaches a worker by mail or on paper. */
+const WORKERS_PARTS: ReadonlySet<string> = new Set(["base", "mail"]);
+
 describe("catalogues", () => {
-  test("every text in the sources has its entry, and every entry its German", () => {
-    const wrong: string[] = [];
-    for (const file of sources) {
-      const [part] = partsOf(file);
-      for (const text of textsIn(file)) {
-        if (!part) wrong.push(`${file} is in no part: "${text}"`);
-        else if (!readCatalogue(`${part}-de.po`).get(text)) wrong.push(`${part}: "${text}"`);
-      }
-    }
-    expect([...new Set(wrong)]).toEqual([]);
+  test("every text in the sources is in a part", () => {
+    expect(sources.filter((file) => textsIn(file).length > 0 && !partOfSource(file))).toEqual([]);
+  });
+
+  test("every text in the sources has its German, and no other", () => {
+    const german = readCatalogue("de.po");
+    const texts = new Set(sources.flatMap(textsIn));
+    expect([...texts].filter((text) => !german.get(text))).toEqual([]);
+    expect([...german.keys()].filter((text) => !texts.has(text))).toEqual([]);
+  });
+
+  test.each(["es", "pl"])("what a worker reads is there in %s", (language) => {
+    const words = readCatalogue(`${language}.po`);
+    const texts = sources
+      .filter((file) => WORKERS_PARTS.has(partOfSource(file) ?? ""))
+      .flatMap(textsIn);
+    expect([...new Set(texts)].filter((text) => !words.get(text))).toEqual([]);
   });
 
   test("a page loads the words of everything it shows", () => {
@@ -116,7 +101,7 @@ describe("catalogues", () => {
           for (const one of closure(`src/routes/${page}.tsx`)) {
             // Rule sets come along for their numbers; pages that show their labels load "rules".
             if (one.startsWith("shared/rule-sets/")) continue;
-            if (textsIn(one).length > 0 && !partsOf(one).some((part) => loaded.has(part)))
+            if (textsIn(one).length > 0 && !loaded.has(partOfSource(one) ?? ""))
               missing.push(`${page} shows ${one}`);
           }
         }

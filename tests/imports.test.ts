@@ -16,7 +16,7 @@ interface Import {
 }
 
 function importsOf(from: string, text: string): Import[] {
-  return [...text.matchAll(/(?:from|import)\s*\(?\s*"([^"]+)"/g)].map(([, to = ""]) => ({
+  return [...text.matchAll(/(?:from|import)\s*\(?\s*"([^"\s]+)"/g)].map(([, to = ""]) => ({
     from,
     to: to.startsWith(".") ? relative(root, resolve(root, dirname(from), to)) : to,
   }));

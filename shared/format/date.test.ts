@@ -3,6 +3,7 @@ import {
   formatDate,
   formatDay,
   formatInstant,
+  formatInstantsApart,
   formatLongDay,
   formatMonth,
   formatShortDate,
@@ -33,6 +34,22 @@ test("an instant is shown in the site's zone, on both sides of a change of clock
   expect(formatInstant("2026-12-01T06:12:00Z", "Europe/London", "en")).toBe(
     "1 December 2026, 06:12",
   );
+});
+
+test("instants of one minute are told apart", () => {
+  const apart = (...times: string[]) =>
+    formatInstantsApart(
+      times.map((time) => `2026-12-01T${time}Z`),
+      "Europe/London",
+      "en",
+    ).map((text) => text.replace("1 December 2026, ", ""));
+  expect(apart("06:12:00.000", "06:13:00.000")).toEqual(["06:12", "06:13"]);
+  expect(apart("06:12:09.000", "06:12:41.500", "06:14:41.500")).toEqual([
+    "06:12:09",
+    "06:12:41",
+    "06:14",
+  ]);
+  expect(apart("06:12:09.120", "06:12:09.500")).toEqual(["06:12:09.120", "06:12:09.500"]);
 });
 
 test("dates and times as typed", () => {

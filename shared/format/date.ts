@@ -1,7 +1,8 @@
 import type { Locale } from "../i18n/index";
+import { decimalMark } from "./number";
 
-/** Day before month in both languages. */
-const LANGUAGE_TAG: Readonly<Record<Locale, string>> = { en: "en-GB", de: "de-DE" };
+/** English with the day before the month; every other language as its own country writes it. */
+const languageTag = (locale: Locale): string => (locale === "en" ? "en-GB" : locale);
 
 type Parts = Readonly<Record<"weekday" | "day" | "month" | "year" | "hour" | "minute", string>>;
 
@@ -17,7 +18,7 @@ function partsOf(
   const key = `${locale} ${timeZone} ${names}`;
   let formatter = formatters.get(key);
   if (!formatter) {
-    formatter = new Intl.DateTimeFormat(LANGUAGE_TAG[locale], {
+    formatter = new Intl.DateTimeFormat(languageTag(locale), {
       timeZone,
       weekday: names === "2-digit" ? "short" : names,
       day: "numeric",
@@ -46,42 +47,60 @@ const localParts = (
 /** The short name without its point, and "Sep" in either language: the browsers do not agree. */
 const short = (name: string) => name.replace(".", "").slice(0, 3);
 
-/** "1 December 2026", "1. Dezember 2026". */
-export function formatDate(isoDate: string, locale: Locale): string {
-  const { day, month, year } = localParts(isoDate, locale);
-  return locale === "de" ? `${day}. ${month} ${year}` : `${day} ${month} ${year}`;
+const wholeDates = new Map<string, Intl.DateTimeFormat>();
+/** A local date by the language's own pattern. */
+function writeDate(isoDate: string, locale: Locale, pattern: Intl.DateTimeFormatOptions): string {
+  const key = `${locale} ${Object.values(pattern).join(" ")}`;
+  let formatter = wholeDates.get(key);
+  if (!formatter) {
+    formatter = new Intl.DateTimeFormat(languageTag(locale), { timeZone: "UTC", ...pattern });
+    wholeDates.set(key, formatter);
+  }
+  return formatter.format(localDate(isoDate));
 }
+
+/** "1 December 2026", "1. Dezember 2026", "1 de diciembre de 2026", "1 grudnia 2026". */
+export function formatDate(isoDate: string, locale: Locale): string {
+  return writeDate(isoDate, locale, { day: "numeric", month: "long", year: "numeric" });
+}
+
+/** English writes no comma after the weekday. */
+const afterWeekday = (locale: Locale) => (locale === "en" ? " " : ", ");
 
 /** "Tuesday 1 December", "Dienstag, 1. Dezember": a day near today, where the year is plain. */
 export function formatDay(isoDate: string, locale: Locale): string {
-  const { weekday, day, month } = localParts(isoDate, locale);
-  return locale === "de" ? `${weekday}, ${day}. ${month}` : `${weekday} ${day} ${month}`;
+  const { weekday } = localParts(isoDate, locale);
+  const day = writeDate(isoDate, locale, { day: "numeric", month: "long" });
+  return `${weekday}${afterWeekday(locale)}${day}`;
 }
 
 /** "Tuesday 1 December 2026", "Dienstag, 1. Dezember 2026": beside a field in which a date of any year is chosen. */
 export function formatLongDay(isoDate: string, locale: Locale): string {
   const { weekday } = localParts(isoDate, locale);
-  return `${weekday}${locale === "de" ? "," : ""} ${formatDate(isoDate, locale)}`;
+  return `${weekday}${afterWeekday(locale)}${formatDate(isoDate, locale)}`;
 }
 
-/** "1 Dec 2026", "01.12.2026": for columns. */
+/** "1 Dec 2026", "01.12.2026", "01/12/2026": for columns. */
 export function formatShortDate(isoDate: string, locale: Locale): string {
-  const { day, month, year } = localParts(isoDate, locale, locale === "de" ? "2-digit" : "short");
-  return locale === "de"
-    ? `${day.padStart(2, "0")}.${month}.${year}`
-    : `${day} ${short(month)} ${year}`;
+  if (locale !== "en")
+    return writeDate(isoDate, locale, { day: "2-digit", month: "2-digit", year: "numeric" });
+  const { day, month, year } = localParts(isoDate, locale, "short");
+  return `${day} ${short(month)} ${year}`;
 }
+
+/** German writes a point after the number of a day. */
+const dayNumber = (day: string, locale: Locale) => (locale === "de" ? `${day}.` : day);
 
 /** "8 Apr", "8. Apr": within the year, for columns. */
 export function formatDayMonth(isoDate: string, locale: Locale): string {
   const { day, month } = localParts(isoDate, locale);
-  return locale === "de" ? `${day}. ${short(month)}` : `${day} ${short(month)}`;
+  return `${dayNumber(day, locale)} ${short(month)}`;
 }
 
 /** "Thu 3", "Do 3.": within the week. */
 export function formatWeekday(isoDate: string, locale: Locale): string {
   const { weekday, day } = localParts(isoDate, locale, "short");
-  return locale === "de" ? `${weekday.replace(".", "")} ${day}.` : `${weekday} ${day}`;
+  return `${weekday.replace(".", "")} ${dayNumber(day, locale)}`;
 }
 
 export function formatMonth(isoDate: string, locale: Locale): string {
@@ -99,18 +118,50 @@ export function formatInstant(instant: string, timeZone: string, locale: Locale)
   return `${formatDate(localDateOf(instant, timeZone), locale)}, ${formatTime(instant, timeZone)}`;
 }
 
+/**
+ * Instants of the site's zone, each told from the others: by minutes, with seconds where two share a minute, with
+ * thousandths where two share a second.
+ */
+export function formatInstantsApart(
+  instants: readonly string[],
+  timeZone: string,
+  locale: Locale,
+): string[] {
+  const isAlike = (instant: string, length: number) =>
+    instants.filter((one) => one.slice(0, length) === instant.slice(0, length)).length > 1;
+  return instants.map((instant) => {
+    const text = formatInstant(instant, timeZone, locale);
+    // Zones differ from UTC by whole minutes: what is finer is the same in all of them.
+    const [, seconds = "00", thousandths = "000"] =
+      /:(\d{2})(?:\.(\d{3}))?\d*Z$/.exec(instant) ?? [];
+    if (isAlike(instant, "2026-12-01T06:12:00".length))
+      return `${text}:${seconds}${decimalMark(locale)}${thousandths}`;
+    return isAlike(instant, "2026-12-01T06:12".length) ? `${text}:${seconds}` : text;
+  });
+}
+
 /** The local date of an instant in the site's zone, "2026-12-01". */
 export function localDateOf(instant: string, timeZone: string): string {
   const { day, month, year } = partsOf(new Date(instant), "en", timeZone, "2-digit");
   return `${year}-${month}-${day.padStart(2, "0")}`;
 }
 
-/** A date as a person types it: ISO everywhere, `1.12.2026` in German, `1/12/2026` (day first) in English. */
+/** How the language writes a date in figures: with points, or with strokes. */
+export const datePattern = (locale: Locale): "dd.mm.yyyy" | "dd/mm/yyyy" =>
+  writeDate("2026-12-01", locale, { day: "2-digit", month: "2-digit", year: "numeric" }).includes(
+    ".",
+  )
+    ? "dd.mm.yyyy"
+    : "dd/mm/yyyy";
+
+/** A date as a person types it: ISO everywhere, `1.12.2026` in German and Polish, `1/12/2026` (day first) in English and Spanish. */
 export function parseDate(text: string, locale: Locale): string | null {
   const typed = text.trim();
   const iso = /^(\d{4})-(\d{1,2})-(\d{1,2})$/.exec(typed);
   const local = (
-    locale === "de" ? /^(\d{1,2})\.(\d{1,2})\.(\d{4})$/ : /^(\d{1,2})\/(\d{1,2})\/(\d{4})$/
+    datePattern(locale) === "dd.mm.yyyy"
+      ? /^(\d{1,2})\.(\d{1,2})\.(\d{4})$/
+      : /^(\d{1,2})\/(\d{1,2})\/(\d{4})$/
   ).exec(typed);
   const parts = iso ? [iso[1], iso[2], iso[3]] : local ? [local[3], local[2], local[1]] : null;
   if (!parts) return null;

@@ -4,7 +4,17 @@ export const MINUS = "\u2212";
 /** What stands where there is no number: never 0. */
 export const NO_FIGURE = "\u2013";
 
-const DECIMAL_MARK: Readonly<Record<Locale, string>> = { en: ".", de: "," };
+const decimalMarks = new Map<Locale, string>();
+/** A point in English, a comma in most other languages. */
+export function decimalMark(locale: Locale): string {
+  let mark = decimalMarks.get(locale);
+  if (mark === undefined) {
+    const parts = new Intl.NumberFormat(locale).formatToParts(0.5);
+    mark = parts.find(({ type }) => type === "decimal")?.value ?? ".";
+    decimalMarks.set(locale, mark);
+  }
+  return mark;
+}
 
 /** Rounds half away from zero on the decimal digits, so that 86.65 is 86.7 whatever its binary neighbour says. */
 export function roundTo(value: number, digits: number): number {
@@ -22,13 +32,13 @@ export function formatNumber(value: number | null, digits: number, locale: Local
   const sign = rounded < 0 ? MINUS : "";
   return fraction === undefined
     ? `${sign}${grouped}`
-    : `${sign}${grouped}${DECIMAL_MARK[locale]}${fraction}`;
+    : `${sign}${grouped}${decimalMark(locale)}${fraction}`;
 }
 
 /** As typed into a field: no thousands mark, all stored digits. */
 export function editNumber(value: number | null, locale: Locale): string {
   if (value === null || !Number.isFinite(value)) return "";
-  return String(value).replace(".", DECIMAL_MARK[locale]).replace("-", MINUS);
+  return String(value).replace(".", decimalMark(locale)).replace("-", MINUS);
 }
 
 /** Nobody types more digits than this. */
@@ -62,7 +72,7 @@ export function parseNumber(text: string, locale: Locale): Parsed<number> {
   const marks: readonly string[] = typed.match(/[.,]/g) ?? [];
   if (marks.length > 1) return { kind: marks.includes(",") ? "ambiguous" : "invalid" };
   const mark = marks[0];
-  if (mark !== undefined && mark !== DECIMAL_MARK[locale]) {
+  if (mark !== undefined && mark !== decimalMark(locale)) {
     const looksLikeThousands = /^-?\d{1,3}[.,]\d{3}$/.test(typed);
     if (looksLikeThousands || locale === "en") return { kind: "ambiguous" };
   }

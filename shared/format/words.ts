@@ -27,7 +27,7 @@ const NO_NOUNS: ReadonlySet<string> = new Set([
 /** A label inside a sentence: without its capital, unless it begins with a German noun. */
 export function withinSentence(text: string, locale: Locale | string): string {
   const [first = ""] = text.split(" ", 1);
-  return locale === "en" || NO_NOUNS.has(first)
+  return locale !== "de" || NO_NOUNS.has(first)
     ? text.charAt(0).toLocaleLowerCase(locale) + text.slice(1)
     : text;
 }

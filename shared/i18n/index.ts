@@ -1,11 +1,9 @@
 import { type I18n, type Messages, setupI18n } from "@lingui/core";
+import { CATALOGUES } from "./compiled/catalogues";
+import { LOCALE_NAMES, LOCALES, type Locale } from "./compiled/locales";
 import { isolateValues } from "./isolate";
 
-export const LOCALES = ["en", "de"] as const;
-export type Locale = (typeof LOCALES)[number];
-
-/** Each language in its own words, for the choice before sign-in. */
-export const LOCALE_NAMES: Readonly<Record<Locale, string>> = { en: "English", de: "Deutsch" };
+export { LOCALE_NAMES, LOCALES, type Locale };
 
 export function isLocale(value: unknown): value is Locale {
   return LOCALES.some((locale) => locale === value);
@@ -20,32 +18,9 @@ export function pickLocale(wanted: readonly string[]): Locale {
   return "en";
 }
 
-/** Parts of the catalogue (see lingui.config.ts): a page loads what it needs, a worker's phone only the base. */
-export const CATALOGUE_PARTS = [
-  "base",
-  "people",
-  "office",
-  "rules",
-  "day",
-  "register",
-  "measuring",
-  "mail",
-] as const;
-export type CataloguePart = (typeof CATALOGUE_PARTS)[number];
-
-// One literal import a file, so that the bundler makes one chunk each.
-const CATALOGUES: Readonly<
-  Record<CataloguePart, Readonly<Record<Locale, () => Promise<{ messages: Messages }>>>>
-> = {
-  base: { en: () => import("./base-en"), de: () => import("./base-de") },
-  people: { en: () => import("./people-en"), de: () => import("./people-de") },
-  office: { en: () => import("./office-en"), de: () => import("./office-de") },
-  rules: { en: () => import("./rules-en"), de: () => import("./rules-de") },
-  day: { en: () => import("./day-en"), de: () => import("./day-de") },
-  register: { en: () => import("./register-en"), de: () => import("./register-de") },
-  measuring: { en: () => import("./measuring-en"), de: () => import("./measuring-de") },
-  mail: { en: () => import("./mail-en"), de: () => import("./mail-de") },
-};
+/** Parts of the catalogue (scripts/lib/catalogue-parts.mjs): a page loads what it needs, a worker's phone only the base. */
+export type CataloguePart = keyof typeof CATALOGUES;
+export const CATALOGUE_PARTS = Object.keys(CATALOGUES) as CataloguePart[];
 
 /** The parts that an i18n object has or is getting, each with its loading: whoever asks again waits for the same one. */
 const partsOf = new WeakMap<I18n, Map<CataloguePart, Promise<void>>>();
@@ -57,7 +32,9 @@ function partsIn(i18n: I18n): Map<CataloguePart, Promise<void>> {
 }
 
 async function loadMessages(locale: Locale, parts: Iterable<CataloguePart>): Promise<Messages> {
-  const catalogues = await Promise.all([...parts].map((part) => CATALOGUES[part][locale]()));
+  const catalogues = await Promise.all<{ messages: Messages }>(
+    [...parts].map((part) => CATALOGUES[part][locale]()),
+  );
   return Object.assign({}, ...catalogues.map((catalogue) => catalogue.messages)) as Messages;
 }
 
