@@ -13,7 +13,8 @@ import type {
 import { buildDayInput, type KnownAssignment, type KnownTask } from "../day/build-day-input";
 import { summarizeDay } from "../day/summarize-day";
 import { levelOf, mainLimit } from "../rule-sets";
-import type { PlanChange, Tried } from "../schemas/plan";
+import type { PlanChange } from "../schemas/plan";
+import type { Tried } from "../schemas/tried";
 
 /** A worker's nominal day, with what is assigned and measured on them. */
 export interface TriedWorker {

@@ -7,10 +7,12 @@ import type {
 } from "../acoustics/types";
 import type { KnownAssignment } from "../day/build-day-input";
 import { Can, IsoDate, Name, PageQuery, pageOf, Reason } from "./common";
-import { DayFigures } from "./finding";
+import { Control } from "./follow-up";
+import { KeptTimetable } from "./timetable";
+import { PlanOutcome, Verdict } from "./tried";
 
 export const PlanScope = z.object({
-  scopeKind: z.enum(["worker", "job", "area"]),
+  scopeKind: z.enum(["worker", "job", "area", "crew"]),
   scopeId: z.uuid(),
 });
 export type PlanScope = z.infer<typeof PlanScope>;
@@ -79,6 +81,53 @@ export const PlanInput = PlanScope.extend({
 });
 export type PlanInput = z.infer<typeof PlanInput>;
 
+/** Under which of the five kinds of control a step comes, and the finding that it is to mend. */
+const StepFinding = z.object({ findingId: z.uuid(), control: Control });
+
+export const PlanStepInput = z.object({
+  what: Reason,
+  ownerId: z.uuid().nullable().default(null),
+  dueOn: IsoDate,
+  /** An open finding that gets it as its measure. */
+  mends: StepFinding.nullable().default(null),
+});
+export type PlanStepInput = z.infer<typeof PlanStepInput>;
+
+export const PlanStepChange = PlanStepInput.omit({ mends: true });
+export type PlanStepChange = z.infer<typeof PlanStepChange>;
+
+/** Marked done, or that it can't be, and why; or open again. */
+export const PlanStepMark = z
+  .object({
+    state: z.enum(["open", "done", "cannot"]),
+    reason: Reason.nullable().default(null),
+  })
+  .check((context) => {
+    const { state, reason } = context.value;
+    if (state === "cannot" && reason === null)
+      context.issues.push({
+        code: "custom",
+        input: reason,
+        path: ["reason"],
+        params: { code: "required" },
+      });
+  });
+export type PlanStepMark = z.infer<typeof PlanStepMark>;
+
+export const PlanStepView = z.object({
+  id: z.uuid(),
+  what: z.string(),
+  ownerId: z.uuid().nullable(),
+  ownerName: z.string().nullable(),
+  dueOn: IsoDate,
+  state: z.enum(["open", "done", "cannot"]),
+  markedOn: IsoDate.nullable(),
+  reason: z.string().nullable(),
+  mends: StepFinding.extend({ kind: z.string(), workerName: z.string().nullable() }).nullable(),
+  revision: z.number(),
+});
+export type PlanStepView = z.infer<typeof PlanStepView>;
+
 export const PlanPutAside = z.object({ reason: Reason });
 
 const Scope = PlanScope.extend({ name: z.string(), siteId: z.uuid(), siteName: z.string() });
@@ -136,35 +185,6 @@ export const TrySubject = z.object({
 });
 export type TrySubject = z.infer<typeof TrySubject>;
 
-const Verdict = z.enum(["under", "over", "cant-tell-yet", "not-assessed"]);
-/** A day as it is expected, before or after the changes. */
-const Tried = z.object({
-  verdict: Verdict,
-  outsideDb: z.number().nullable(),
-  atEarDb: z.number().nullable(),
-  figures: DayFigures.omit({ resultId: true, origin: true }).nullable(),
-  cannot: z
-    .object({
-      changeIndex: z.number(),
-      why: z.enum(["not-enough-time", "not-in-the-day"]),
-    })
-    .nullable(),
-});
-export type Tried = z.infer<typeof Tried>;
-
-export const PlanOutcome = z.object({
-  workers: z.array(
-    z.object({
-      workerId: z.uuid(),
-      workerName: z.string(),
-      employeeNumber: z.string(),
-      before: Tried,
-      after: Tried,
-    }),
-  ),
-});
-export type PlanOutcome = z.infer<typeof PlanOutcome>;
-
 const Counts = z.object({
   under: z.number(),
   over: z.number(),
@@ -175,6 +195,7 @@ const Counts = z.object({
 export const PlanRow = z.object({
   id: z.uuid(),
   name: z.string(),
+  kind: z.enum(["changes", "timetable"]),
   scope: Scope,
   goal: z.string(),
   ruleSetKey: z.string(),
@@ -183,13 +204,16 @@ export const PlanRow = z.object({
   authorName: z.string().nullable(),
   putAsideReason: z.string().nullable(),
   changesCount: z.number(),
+  /** Steps that are open, and all of them. */
+  stepsOpen: z.number(),
+  stepsCount: z.number(),
   before: Counts,
   after: Counts,
   /** The loudest expected day after the changes, without protection and at the ear, dB. */
   worstOutsideDb: z.number().nullable(),
   worstAtEarDb: z.number().nullable(),
   revision: z.number(),
-  can: Can("keep", "putAside"),
+  can: Can("keep", "putAside", "step"),
 });
 export type PlanRow = z.infer<typeof PlanRow>;
 export const PlanPage = pageOf(PlanRow);
@@ -202,7 +226,15 @@ export const PlanView = PlanRow.extend({
   baseDate: IsoDate,
   methodVersion: z.number(),
   changes: z.array(PlanChange),
+  /** Who is where when; null where the plan is one of changes. */
+  timetable: KeptTimetable.nullable(),
   outcome: PlanOutcome,
+  steps: z.array(PlanStepView),
+  /** Who may have a step in hand, and which open findings of the plan's people one may mend: for whoever writes steps. */
+  owners: z.array(z.object({ id: z.uuid(), name: z.string() })),
+  findings: z.array(
+    z.object({ id: z.uuid(), kind: z.string(), workerName: z.string().nullable() }),
+  ),
   /** Names of what the changes speak of. */
   names: z.record(z.string(), z.string()),
   /** Each worker's latest judged day since it was kept. */

@@ -6,15 +6,21 @@ import { formatInstant, formatShortDate } from "../../shared/format/date";
 import { isolate } from "../../shared/i18n/isolate";
 import { ruleSetVersion } from "../../shared/rule-sets";
 import type { PlanView } from "../../shared/schemas/plan";
+import { localDate } from "../../shared/time/zone";
+import { Button } from "../components/button";
 import { Failed } from "../components/failed";
 import { Form, FormActions, SubmitButton, TextAreaField, useSchemaForm } from "../components/form";
 import { FormProblem } from "../components/form-problem";
 import { TextLink } from "../components/link";
 import { Folio, PageBody, PageHead, Section } from "../components/page";
+import { controlWord } from "../features/findings/control-words";
 import { changeSentence } from "../features/planning/change-words";
 import { CountsLine } from "../features/planning/counts-line";
 import { OutcomeTable } from "../features/planning/outcome-table";
+import { PlanSteps } from "../features/planning/plan-steps";
 import { planQueries, usePutAside } from "../features/planning/queries";
+import { TimetableSheet, TimetableTable } from "../features/planning/timetable-table";
+import { goodnessSentence } from "../features/planning/timetable-words";
 import { useChangeKey } from "../lib/change-key";
 import { useLocale } from "../lib/i18n";
 import { paths } from "../paths";
@@ -62,19 +68,42 @@ function Plan({ plan }: { plan: PlanView }) {
             author: isolate(plan.authorName ?? i18n.t("nobody known")),
             goal: i18n._(goal),
           })}
+          actions={
+            plan.timetable && <Button onClick={() => window.print()}>{i18n.t("Print")}</Button>
+          }
         />
         {plan.putAsideReason !== null && (
           <p>
             <b>{i18n.t("Put aside.")}</b> {plan.putAsideReason}
           </p>
         )}
-        <Section title={i18n.t("Changes")} id="changes">
-          <ol className="change-list">
-            {plan.changes.map((change, place) => (
-              // biome-ignore lint/suspicious/noArrayIndexKey: a change has no name but its place
-              <li key={place}>{changeSentence(i18n, locale, change, nameOf)}</li>
-            ))}
-          </ol>
+        {plan.timetable ? (
+          <Section title={i18n.t("Who is where when")} id="timetable">
+            <p>{goodnessSentence(i18n, locale, plan.timetable.found)}</p>
+            <TimetableTable {...plan.timetable} />
+            <TimetableSheet {...plan.timetable} />
+            <p className="no-print">
+              <a className="link" href={`/api/plans/${plan.id}/timetable.csv`} download>
+                {i18n.t("As a file (CSV)")}
+              </a>
+            </p>
+          </Section>
+        ) : (
+          <Section title={i18n.t("Changes")} id="changes">
+            <ol className="change-list">
+              {plan.changes.map((change, place) => (
+                // biome-ignore lint/suspicious/noArrayIndexKey: a change has no name but its place
+                <li key={place}>{changeSentence(i18n, locale, change, nameOf)}</li>
+              ))}
+            </ol>
+          </Section>
+        )}
+        <Section title={i18n.t("Steps")} id="steps">
+          <PlanSteps
+            plan={plan}
+            today={localDate(new Date(), timeZone)}
+            controlWord={(control) => controlWord(i18n, control)}
+          />
         </Section>
         <Section title={i18n.t("Expected, and found since")} id="outcome">
           <CountsLine before={plan.before} after={plan.after} />
@@ -93,9 +122,11 @@ function Plan({ plan }: { plan: PlanView }) {
           </p>
         </Section>
         {plan.can.putAside && plan.putAsideReason === null && (
-          <Section title={i18n.t("Put it aside")} id="put-aside">
-            <PutAsideForm plan={plan} />
-          </Section>
+          <div className="no-print">
+            <Section title={i18n.t("Put it aside")} id="put-aside">
+              <PutAsideForm plan={plan} />
+            </Section>
+          </div>
         )}
       </PageBody>
       <Folio>

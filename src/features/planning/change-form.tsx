@@ -225,7 +225,7 @@ function RotationForm({ subject, onAdd, onLeave }: PartProps) {
       <SelectField form={form} name="workerId" label={i18n.t("Who gives")} choices={workers} />
       <DurationField form={form} name="minutes" label={i18n.t("How long")} unit={i18n.t("min")} />
       <SelectField form={form} name="taskId" label={i18n.t("of the task")} choices={tasks} />
-      <SelectField form={form} name="otherWorkerId" label={i18n.t("to")} choices={workers} />
+      <SelectField form={form} name="otherWorkerId" label={i18n.t("to whom")} choices={workers} />
       <SelectField
         form={form}
         name="otherTaskId"

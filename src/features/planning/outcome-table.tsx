@@ -2,7 +2,7 @@ import { useLingui } from "@lingui/react";
 import { formatShortDate } from "../../../shared/format/date";
 import { formatLevel } from "../../../shared/format/level";
 import { isolate } from "../../../shared/i18n/isolate";
-import type { Tried } from "../../../shared/schemas/plan";
+import type { Tried } from "../../../shared/schemas/tried";
 import { DataTable } from "../../components/data-table";
 import {
   AtEarFigure,

@@ -8,6 +8,9 @@ import {
   type PlanInput,
   PlanPage,
   type PlanScope,
+  type PlanStepChange,
+  type PlanStepInput,
+  type PlanStepMark,
   PlanView,
   TrySubject,
 } from "../../../shared/schemas/plan";
@@ -64,5 +67,46 @@ export function usePutAside(id: string) {
       client.setQueryData(planQueries.one(id).queryKey, view);
       return client.invalidateQueries({ queryKey: [...planQueries.all, "list"] });
     },
+  });
+}
+
+/** What becomes of a plan's steps; each answer is the whole plan. */
+export type StepChange =
+  | { kind: "add"; body: PlanStepInput }
+  | { kind: "change"; stepId: string; revision: number; body: PlanStepChange }
+  | { kind: "mark"; stepId: string; revision: number; body: PlanStepMark };
+
+export function useChangeStep(planId: string) {
+  const client = useQueryClient();
+  return useMutation({
+    mutationFn: ({ change, key }: { change: StepChange; key: string }) => {
+      const path = `/plans/${planId}/steps`;
+      switch (change.kind) {
+        case "add":
+          return api.post(path, { body: change.body, schema: PlanView, idempotencyKey: key });
+        case "change":
+          return api.put(`${path}/${change.stepId}`, {
+            body: change.body,
+            schema: PlanView,
+            ifMatch: String(change.revision),
+          });
+        case "mark":
+          return api.post(`${path}/${change.stepId}/mark`, {
+            body: change.body,
+            schema: PlanView,
+            ifMatch: String(change.revision),
+            idempotencyKey: key,
+          });
+      }
+    },
+    onSuccess: (view) => {
+      client.setQueryData(planQueries.one(planId).queryKey, view);
+      return Promise.all([
+        client.invalidateQueries({ queryKey: [...planQueries.all, "list"] }),
+        client.invalidateQueries({ queryKey: ["findings"] }),
+      ]);
+    },
+    // Somebody else was there first: what stands now is shown.
+    onError: () => client.invalidateQueries({ queryKey: planQueries.one(planId).queryKey }),
   });
 }
