@@ -153,11 +153,30 @@ export interface Protection {
   /** The worker's own measured attenuation (PAR), dB, with the confidence it is stated at. */
   readonly ownFitDb: number | null;
   readonly activeCheckPassed: boolean;
+  /** ISO date of the check that says so. Absent: no check, or a day that is not stored. */
+  readonly activeCheckedOn?: string;
   /** A-weighted level of a radio or signal under the cup while it is worn, dB. Absent or null: none. */
   readonly audioDb?: number | null;
 }
 
 export type Zone = "none" | "single" | "double";
+
+/** What rounds, or people themselves, say of a wearing time that the shift leaves blank. */
+export interface WearingLooks {
+  readonly source: "round" | "own-report";
+  /** The latest of them, and how many there are. */
+  readonly roundId: string;
+  /** ISO date. */
+  readonly lastOn: string;
+  readonly roundCount: number;
+  readonly wornCount: number;
+  readonly seenCount: number;
+}
+
+/** Where a share worn comes from. */
+export type WornFrom =
+  | { readonly how: "stated" }
+  | { readonly how: "looks"; readonly looks: readonly WearingLooks[] };
 
 /** One task of a shift. */
 export interface TimedTask {
@@ -172,6 +191,8 @@ export interface TimedTask {
   readonly wornPct: number | null;
   /** True where the share is one figure for the whole shift and not the task's own. */
   readonly wornIsShiftWide: boolean;
+  /** Absent where nobody knows, and in results of a time when it was not kept. */
+  readonly wornFrom?: WornFrom;
   /** Standard uncertainty of the duration, minutes. Absent where the recorded minutes are the day itself. */
   readonly durationUncertaintyMin?: number;
 }
@@ -227,6 +248,8 @@ export interface DayInput {
     readonly wearFromDb: number;
     /** Judge limits with the active part's credit (needs a passed check as well). */
     readonly creditsActivePart: boolean;
+    /** ISO date from which these settings hold. Absent for a day that is not stored. */
+    readonly settingsFrom?: string;
     /** Use the ISO 9612 uncertainty in verdicts. */
     readonly usesUncertainty: boolean;
   };

@@ -482,7 +482,10 @@ function check(
       working,
       law.isEnergy ? 10 : law.exchangeRateDb / Math.log10(2),
     );
-    near(resultOf(atEar.equations[atEar.equations.length - 1]!), evaluation.atEarDb);
+    near(
+      resultOf(atEar.equations[atEar.equations.length - 1]!),
+      evaluation.counted?.atEarDb ?? evaluation.atEarDb,
+    );
   }
 }
 

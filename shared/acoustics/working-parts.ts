@@ -32,6 +32,8 @@ export type WorkingValue =
   | { readonly kind: "protector-word"; readonly word: ProtectorWord }
   | { readonly kind: "method"; readonly method: AttenuationMethod }
   | { readonly kind: "reason"; readonly reason: Reason | UncertaintyReason }
+  /** ISO date. */
+  | { readonly kind: "date"; readonly date: string }
   /** A name that somebody gave: not translated. */
   | { readonly kind: "name"; readonly name: string }
   | { readonly kind: "text"; readonly text: WorkingText }
@@ -97,7 +99,8 @@ export interface WorkingRecord {
     | "reading"
     | "run"
     | "protector-revision"
-    | "assignment";
+    | "assignment"
+    | "wearing-round";
   readonly id: string;
 }
 
@@ -199,6 +202,10 @@ export function number(of: number): WorkingValue {
 
 export function name(of: string): WorkingValue {
   return { kind: "name", name: of };
+}
+
+export function date(of: string): WorkingValue {
+  return { kind: "date", date: of };
 }
 
 export function reason(of: Reason | UncertaintyReason): WorkingValue {

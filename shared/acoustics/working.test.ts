@@ -1,8 +1,9 @@
 import { describe, expect, test } from "vitest";
+import { buildLevel, buildProtection, buildTask, dayOf } from "../../tests/published/build-day";
 import { ENGINE_VECTORS, type EngineVector } from "../../tests/published/vectors";
 import { RULE_SETS, ruleSetVersion } from "../rule-sets";
 import { evaluateDay } from "./day";
-import type { RuleSetVersion } from "./types";
+import type { RuleSetVersion, TimedTask } from "./types";
 import { buildWorking, type MathPart, type Working, type WorkingValue } from "./working";
 
 function rulesOf(key: string): RuleSetVersion {
@@ -114,6 +115,120 @@ describe("the equations end in the evaluation's own numbers", () => {
     expect(cited(bySnr)).toEqual([{ id: "iso-4869-2", clause: "8" }]);
     expect(step?.sources).not.toContainEqual({ id: "iso-4869-2", clause: "8" });
     expect(step?.sources).toEqual(expect.arrayContaining(cited(governing)));
+  });
+
+  test("with an active part credited it ends at the figure that counts, by the site’s policy and the check", () => {
+    const active = {
+      attenuationDb: [12, 14, 13, 8, 3, 0, 0, 0],
+      delayS: null,
+      gain: null,
+      maximumDb: null,
+      bandwidthHz: null,
+      saturatesAboveDb: null,
+      batteryMin: 200,
+    } as const;
+    const bands = {
+      meanDb: [11, 13, 18, 25, 31, 33, 34, 34],
+      sdDb: [2, 2, 2, 2, 2, 2, 2, 2],
+    } as const;
+    const protection = {
+      ...buildProtection({ kind: "active-earmuff", bands, active }),
+      activeCheckPassed: true,
+      activeCheckedOn: "2026-11-12",
+    };
+    const octaveBandsDb = [98, 99, 97, 92, 88, 84, 80, 75] as const;
+    const on = dayOf(
+      buildTask("Soak run", 300, buildLevel(94, { octaveBandsDb }), { protection, wornPct: 90 }),
+    );
+    const day = {
+      ...on,
+      site: { ...on.site, creditsActivePart: true, settingsFrom: "2026-02-02" },
+    };
+    const rules = rulesOf("uk-2005");
+    const evaluation = evaluateDay(day, rules, []);
+    const { steps } = buildWorking(day, rules, [], evaluation);
+    const step = steps.find(({ title }) => title.id.startsWith("The day at the ear"))!;
+    expect(evaluation.counted!.atEarDb).toBeLessThan(evaluation.atEarDb! - 0.5);
+    const results = resultsOf(buildWorking(day, rules, [], evaluation), step.title.id);
+    expect(results.at(-1)).toEqual({ kind: "level", db: evaluation.counted!.atEarDb });
+    expect(results.at(-2)).toEqual({ kind: "level", db: evaluation.atEarDb });
+    const emphasized = step.tables[1]!.rows.filter((row) => row.isEmphasized);
+    expect(emphasized.map(({ id, cells }) => [id, cells[1]])).toEqual([
+      ["counted", { kind: "level", db: evaluation.counted!.atEarDb }],
+    ]);
+    const note = step.notes.find(({ id }) => id.startsWith("The site’s policy, in force from"));
+    expect(note?.values).toEqual({
+      from: { kind: "date", date: "2026-02-02" },
+      checked: { kind: "date", date: "2026-11-12" },
+      counted: { kind: "level", db: evaluation.counted!.atEarDb },
+      off: { kind: "level", db: evaluation.atEarDb },
+    });
+    const unchecked = {
+      ...day,
+      shifts: day.shifts.map((shift) => ({
+        ...shift,
+        tasks: shift.tasks.map((task) => ({
+          ...task,
+          protection: { ...protection, activeCheckPassed: false },
+        })),
+      })),
+    };
+    expect(
+      buildWorking(unchecked, rules, [])
+        .steps.flatMap(({ notes }) => notes.map(({ id }) => id))
+        .join(" "),
+    ).toContain("and none is on record");
+  });
+
+  test("each share worn says where it comes from; an old result that does not know says nothing", () => {
+    const worn = (id: string, fields: Partial<TimedTask>) =>
+      buildTask(id, 100, buildLevel(95, { lcMinusLaDb: 2 }), {
+        protection: buildProtection({ snrDb: 25 }),
+        ...fields,
+      });
+    const looks = {
+      roundId: "r",
+      lastOn: "2026-11-03",
+      roundCount: 1,
+      wornCount: 12,
+      seenCount: 14,
+    };
+    const day = dayOf(
+      worn("Chipping", { wornPct: 90, wornFrom: { how: "stated" } }),
+      worn("Grinding", {
+        wornPct: 85.7,
+        wornFrom: { how: "looks", looks: [{ ...looks, source: "round" }] },
+      }),
+      worn("Linishing", {
+        wornPct: 80,
+        wornFrom: { how: "looks", looks: [{ ...looks, source: "own-report", roundCount: 3 }] },
+      }),
+      worn("Rig run", { wornPct: null }),
+      worn("Old", { wornPct: 100 }),
+    );
+    const step = buildWorking(day, rulesOf("uk-2005"), []).steps.find(({ title }) =>
+      title.id.startsWith("The day at the ear"),
+    )!;
+    const table = step.tables.find(({ title }) => title?.id === "How long it was worn")!;
+    const said = (cell: WorkingValue | null | undefined): string | undefined =>
+      cell?.kind === "text"
+        ? cell.text.id
+        : cell?.kind === "list"
+          ? cell.values.map(said).join()
+          : cell?.kind;
+    expect(table.rows.map(({ id, cells }) => [id, said(cells[1]), said(cells[2])])).toEqual([
+      ["Chipping", "share", "stated on the shift"],
+      ["Grinding", "share", "observation round of {date}: looks {seen}, worn at {worn}"],
+      ["Linishing", "share", "{count} own reports, the last of {date}: {share} together"],
+      [
+        "Rig run",
+        "not known, taken as {share}",
+        "assumed: nobody said or saw how long it was worn",
+      ],
+    ]);
+    expect(step.records).toContainEqual({ kind: "wearing-round", id: "r" });
+    const cells = step.tables[0]!.rows.find(({ id }) => id === "Rig run")!.cells;
+    expect(cells.map(said)).toContain("not known, taken as {share}");
   });
 
   test("shares of the uncertainty make a whole", () => {

@@ -16,6 +16,7 @@ import type {
   RuleSetVersion,
   TimedTask,
   Verdict,
+  WearingLooks,
 } from "./types";
 import {
   type BudgetPart,
@@ -30,6 +31,7 @@ import {
   bounded,
   cited,
   column,
+  date,
   difference,
   fraction,
   type Line,
@@ -665,13 +667,23 @@ class Builder {
             column("word-on", text(/*i18n*/ "Protector, on"), false),
           ]
         : []),
-      column("in-task", text(/*i18n*/ "In the task"), true),
+      column(
+        "in-task",
+        hasActive ? text(/*i18n*/ "In the task, off") : text(/*i18n*/ "In the task"),
+        true,
+      ),
+      ...(this.counted
+        ? [
+            column("in-task-on", text(/*i18n*/ "In the task, on"), true),
+            column("counts", text(/*i18n*/ "Counts"), false),
+          ]
+        : []),
     ];
     const rows = this.evaluation.tasks.map((task) => ({
       ...row(task.timedTaskId, [
         this.nameOf(task.timedTaskId),
         level(task.outsideDb),
-        task.isWorn ? share(task.wornPct) : share(0),
+        task.isWorn ? wornCell(task.wornPct) : share(0),
         level(task.wornDb),
         task.governingMethod
           ? ({ kind: "method", method: task.governingMethod } as const)
@@ -683,6 +695,14 @@ class Builder {
           : ({ kind: "text", text: text(/*i18n*/ "not worn") } as const),
         ...(hasActive ? [level(task.wornActiveDb), word(task.wordActive)] : []),
         this.countsNothing(task.timedTaskId) ? words(COUNTS_NOTHING) : level(task.inTaskDb),
+        ...(this.counted
+          ? [
+              level(task.inTaskActiveDb),
+              task.wornActiveDb === null
+                ? null
+                : words(this.isCredited(task.timedTaskId) ? COUNTS_ON : COUNTS_OFF),
+            ]
+          : []),
       ]),
       isEmphasized: task.timedTaskId === this.evaluation.decidingTaskId,
     }));
@@ -892,9 +912,13 @@ class Builder {
     const { evaluation } = this;
     const on = [
       [text(/*i18n*/ "Active part on all the time"), evaluation.atEarActiveDb],
-      [text(/*i18n*/ "As worked, on while the battery lasts"), evaluation.atEarAsWorkedDb],
+      [
+        text(/*i18n*/ "As worked, on while the battery lasts"),
+        this.countsAsWorked ? null : evaluation.atEarAsWorkedDb,
+      ],
     ] as const;
     const methodRows = this.dayByMethod();
+    const { counted } = this;
     return {
       title: text(/*i18n*/ "The day at the ear, wearing time included"),
       equations: evaluation.atEarDb === null ? [] : this.dayAtEarLines(),
@@ -921,8 +945,23 @@ class Builder {
                 ? []
                 : [row(`active-${index}`, [{ kind: "text", text: title }, level(db), null, null])],
             ),
+            ...(counted
+              ? [
+                  {
+                    ...row("counted", [
+                      words(this.countedTitle()),
+                      level(counted.atEarDb),
+                      null,
+                      words(text(/*i18n*/ "counts, by the site’s policy and the check")),
+                    ]),
+                    isEmphasized: true,
+                    isTotal: true,
+                  },
+                ]
+              : []),
           ],
         },
+        ...this.wornFromTable(),
       ],
       notes: [
         ...this.dayAtEarNotes(),
@@ -933,15 +972,7 @@ class Builder {
               ),
             ]
           : []),
-        ...(evaluation.atEarActiveDb === null
-          ? []
-          : [
-              this.input.site.creditsActivePart
-                ? text(
-                    /*i18n*/ "The limit is judged as worked where a passed active check is on record, else with the active part off.",
-                  )
-                : text(/*i18n*/ "The limit is judged with the active part off."),
-            ]),
+        ...(evaluation.atEarActiveDb === null ? [] : this.creditNotes()),
       ],
       sources: [
         { id: "wearing-time", clause: "" },
@@ -949,8 +980,98 @@ class Builder {
           ? [{ id: "osha-1910.95", clause: /*i18n*/ "App. B" } as const]
           : []),
       ],
-      records: [],
+      records: this.tasks.flatMap(({ id, wornFrom }) =>
+        this.isWornIn(id) && wornFrom?.how === "looks"
+          ? wornFrom.looks.map(({ roundId }) => ({ kind: "wearing-round", id: roundId }) as const)
+          : [],
+      ),
     };
+  }
+
+  /** The active part counts, and the figure with it is known. */
+  private get counted(): { readonly atEarDb: number } | null {
+    const atEarDb = this.evaluation.counted?.atEarDb ?? null;
+    return atEarDb === null ? null : { atEarDb };
+  }
+
+  private isCredited(timedTaskId: string): boolean {
+    return this.dayAtEar.rows.some((one) => one.id === timedTaskId && one.isCredited);
+  }
+
+  private isWornIn(timedTaskId: string): boolean {
+    return this.evaluation.tasks.some((one) => one.timedTaskId === timedTaskId && one.isWorn);
+  }
+
+  /** What counts is the day as worked, and is shown once. */
+  private get countsAsWorked(): boolean {
+    return (
+      this.counted !== null &&
+      this.evaluation.atEarAsWorkedDb !== null &&
+      this.dayAtEar.rows.every(({ wornOnDb, isCredited }) => wornOnDb === null || isCredited)
+    );
+  }
+
+  private countedTitle(): WorkingText {
+    return this.countsAsWorked
+      ? text(/*i18n*/ "What counts: as worked, on while the battery lasts")
+      : text(/*i18n*/ "What counts: as worked where the active part is credited, else off");
+  }
+
+  /** On what the limit is judged, and by whose word. */
+  private creditNotes(): WorkingText[] {
+    const { evaluation, input, counted } = this;
+    if (!input.site.creditsActivePart)
+      return [
+        text(
+          /*i18n*/ "The limit is judged with the active part off: the site’s policy does not credit it.",
+        ),
+      ];
+    if (!counted || evaluation.atEarDb === null)
+      return [
+        text(
+          /*i18n*/ "The limit is judged with the active part off: the site’s policy credits it only after a passed check on this worker, and none is on record.",
+        ),
+      ];
+    const figures = { counted: level(counted.atEarDb), off: level(evaluation.atEarDb) };
+    const checkedOn = this.tasks
+      .flatMap(({ id, protection }) =>
+        this.isCredited(id) ? (protection?.activeCheckedOn ?? []) : [],
+      )
+      .sort()
+      .at(-1);
+    const { settingsFrom } = input.site;
+    return [
+      checkedOn && settingsFrom
+        ? text(
+            /*i18n*/ "The site’s policy, in force from {from}, credits an active part that passed its check on the worker, and this one passed on {checked}: the limit is judged at {counted}. With the active part off it would be {off}.",
+            { from: date(settingsFrom), checked: date(checkedOn), ...figures },
+          )
+        : text(
+            /*i18n*/ "The site’s policy credits an active part that passed its check on the worker, and this one passed: the limit is judged at {counted}. With the active part off it would be {off}.",
+            figures,
+          ),
+    ];
+  }
+
+  /** Where each share worn comes from; nothing where an old result does not say. */
+  private wornFromTable(): WorkingTable[] {
+    const rows = this.tasks.flatMap((task) => {
+      if (!this.isWornIn(task.id)) return [];
+      const from = wornFromCell(task);
+      return from ? [row(task.id, [name(task.name), wornCell(task.wornPct), from])] : [];
+    });
+    if (rows.length === 0) return [];
+    return [
+      table(
+        [
+          column("task", text(/*i18n*/ "Task"), false),
+          column("worn", text(/*i18n*/ "Worn"), true),
+          column("from", text(/*i18n*/ "Where the share comes from"), false),
+        ],
+        rows,
+        text(/*i18n*/ "How long it was worn"),
+      ),
+    ];
   }
 
   private dayAtEarNotes(): WorkingText[] {
@@ -1043,7 +1164,7 @@ class Builder {
           minutes: minutes(one.minutes),
           bare: level(one.tasksDb),
           "bare-term": scientific(bareTerm(one)),
-          worn: share(100 * one.worn),
+          worn: one.atEar?.isWorn ? wornCell(one.task?.wornPct ?? null) : share(0),
           "in-task": isNothing(one) ? words(COUNTS_NOTHING) : level(one.offDb),
           term: scientific(day.term(one, one.offDb)),
           "in-task-on": level(one.onDb),
@@ -1176,6 +1297,7 @@ class Builder {
     const total = (of: (one: TimeAtEar) => number) =>
       day.rows.reduce((sum, one) => sum + of(one), 0);
     const { atEarActiveDb, atEarAsWorkedDb } = evaluation;
+    const { counted } = this;
     return [
       ...audioParts,
       ...wornParts,
@@ -1189,7 +1311,7 @@ class Builder {
               words(text(/*i18n*/ "Active part on all the time")),
             ),
           ]),
-      ...(atEarAsWorkedDb === null
+      ...(atEarAsWorkedDb === null || this.countsAsWorked
         ? []
         : [
             dayLine(
@@ -1203,6 +1325,19 @@ class Builder {
         evaluation.atEarDb!,
         atEarActiveDb === null ? null : words(text(/*i18n*/ "Active part off")),
       ),
+      ...(counted
+        ? [
+            dayLine(
+              total((one) =>
+                one.isCredited
+                  ? (day.asWorkedTerm(one) ?? day.term(one, one.offDb))
+                  : day.term(one, one.offDb),
+              ),
+              counted.atEarDb,
+              words(this.countedTitle()),
+            ),
+          ]
+        : []),
     ];
   }
 
@@ -1267,6 +1402,8 @@ class Builder {
       evaluation.tasks.flatMap(({ governingMethod }) => governingMethod ?? []),
     );
     const isSole = governing.size === 1;
+    // With an active part credited another figure is the day's.
+    const isResult = this.counted === null;
     return methods.map((method) => {
       const why = this.whyNotByMethod(method);
       const db = why || evaluation.atEarDb === null ? null : this.dayAtEar.byMethod(method);
@@ -1288,7 +1425,7 @@ class Builder {
                 }
               : null,
         ]),
-        isEmphasized: governs,
+        isEmphasized: governs && isResult,
       };
     });
   }
@@ -1360,6 +1497,50 @@ class Builder {
   private nameOf(timedTaskId: string): WorkingValue {
     return name(this.names.get(timedTaskId) ?? timedTaskId);
   }
+}
+
+const COUNTS_ON = text(/*i18n*/ "active part on, while the battery lasts");
+const COUNTS_OFF = text(/*i18n*/ "active part off");
+
+/** A share that nobody knows is no share: what it is taken for is said with it. */
+const wornCell = (wornPct: number | null): WorkingValue | null =>
+  wornPct === null
+    ? words(text(/*i18n*/ "not known, taken as {share}", { share: share(100)! }))
+    : share(wornPct);
+
+/** Who said how long it was worn; null where an old result does not tell. */
+function wornFromCell({ wornFrom, wornPct, wornIsShiftWide }: TimedTask): WorkingValue | null {
+  if (wornPct === null)
+    return words(text(/*i18n*/ "assumed: nobody said or saw how long it was worn"));
+  if (!wornFrom) return null;
+  if (wornFrom.how === "stated")
+    return words(
+      wornIsShiftWide
+        ? text(/*i18n*/ "stated on the shift, one share for all of it")
+        : text(/*i18n*/ "stated on the shift"),
+    );
+  return { kind: "list", values: wornFrom.looks.map((looks) => words(looksText(looks))) };
+}
+
+function looksText(looks: WearingLooks): WorkingText {
+  const values = {
+    date: date(looks.lastOn),
+    count: number(looks.roundCount),
+    worn: number(looks.wornCount),
+    seen: number(looks.seenCount),
+    share: share((100 * looks.wornCount) / looks.seenCount)!,
+  };
+  const isOne = looks.roundCount === 1;
+  if (looks.source === "own-report")
+    return isOne
+      ? text(/*i18n*/ "own report of {date}: {share}", values)
+      : text(/*i18n*/ "{count} own reports, the last of {date}: {share} together", values);
+  return isOne
+    ? text(/*i18n*/ "observation round of {date}: looks {seen}, worn at {worn}", values)
+    : text(
+        /*i18n*/ "{count} observation rounds, the last of {date}: looks {seen}, worn at {worn}",
+        values,
+      );
 }
 
 const COUNTS_NOTHING = text(/*i18n*/ "counts nothing: under the threshold");

@@ -107,6 +107,8 @@ export const IssueSlip = z.object({
         .enum(["too-little", "just-enough", "good", "strong-side", "too-much", "enough"])
         .nullable(),
       fit: z.object({ testedOn: IsoDate, hasPassed: z.boolean().nullable() }).nullable(),
+      /** When it was handed out, of two worn together the later; null: assigned, and not handed out yet. */
+      issuedOn: IsoDate.nullable(),
       cushionsDueOn: IsoDate.nullable(),
       tipsDueOn: IsoDate.nullable(),
       batteryMin: z.number().nullable(),

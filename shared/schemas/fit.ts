@@ -158,6 +158,8 @@ export const Candidate = z.object({
   batteryMin: z.number().nullable(),
   batteryLasts: z.boolean().nullable(),
   stock: z.number().nullable(),
+  /** Where Appendix B governs, the label’s US number less 7 with no derating, dB; it stands beside an own fit. */
+  labelLess7Db: z.number().nullable(),
   /** The comparison that put it behind the one before. */
   decidedBy: z.enum([
     "first",
@@ -166,6 +168,7 @@ export const Candidate = z.object({
     "underprotection",
     "overprotection",
     "margin",
+    "least-margin",
     "fit",
     "battery",
     "stock",

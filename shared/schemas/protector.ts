@@ -13,7 +13,7 @@ const HIGHEST_BAND = 7;
 
 /** What a certificate can't say: an SNR below its L, a deviation below zero, an active part that works at 8 kHz. */
 export function plausible(context: Context): void {
-  const { snrDb, lDb, hDb, mDb, bands, active, percentile, usLabel } = context.value;
+  const { snrDb, lDb, hDb, mDb, bands, active, percentile, usLabel, subjectsDb } = context.value;
   const add = (path: (string | number)[], code: string) =>
     context.issues.push({ code: "custom", input: context.value, path, params: { code } });
   if (snrDb !== null && lDb !== null && snrDb < lDb) add(["snrDb"], "snr-below-l");
@@ -23,6 +23,8 @@ export function plausible(context: Context): void {
   )
     add(["mDb"], "hml-all-three");
   if (bands) for (const { path, code } of faultsOfBands(bands)) add(["bands", ...path], code);
+  // The level at the ear rests on means and deviations: without them the subjects would count for nothing.
+  if (subjectsDb && !bands) add(["subjectsDb"], "subjects-without-bands");
   for (const band of belowZero(usLabel?.sdDb ?? []))
     add(["usLabel", "sdDb", band], "deviation-negative");
   if (percentile && percentile.fewDb < percentile.mostDb)

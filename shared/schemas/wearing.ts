@@ -42,6 +42,8 @@ export const WearingRoundView = z.object({
       taskName: z.string(),
       wornCount: z.number(),
       seenCount: z.number(),
+      /** Followed by another own report of the same worker, task and day: it counts nowhere. */
+      isReplaced: z.boolean(),
     }),
   ),
   can: Can("strike"),
@@ -49,6 +51,30 @@ export const WearingRoundView = z.object({
 export type WearingRoundView = z.infer<typeof WearingRoundView>;
 export const WearingRoundPage = pageOf(WearingRoundView);
 export const WearingFilter = PageQuery.extend({ siteId: z.uuid().optional() });
+
+/** For so many days after it was first said, a worker may say it anew. Common practice, no source. */
+export const OWN_REPORT_CHANGE_DAYS = 14;
+export const OwnReportsFilter = z.object({ from: IsoDate });
+/** What somebody said of their own wearing, the latest of each day and task, the latest day first. */
+export const OwnReports = z.object({
+  rows: z.array(
+    z.object({
+      date: IsoDate,
+      taskId: z.uuid(),
+      taskName: z.string(),
+      wornCount: z.number(),
+      seenCount: z.number(),
+      note: z.string(),
+      saidOn: IsoDate,
+      /** Entered by the worker, and not by somebody whom they told. */
+      isByWorker: z.boolean(),
+      /** The last day on which the worker may say it anew. */
+      changeableUntil: IsoDate,
+      canChange: z.boolean(),
+    }),
+  ),
+});
+export type OwnReports = z.infer<typeof OwnReports>;
 
 /** Who is to be looked at in a round: the crew of a date with their tasks in noise. */
 export const WearingTally = z.object({

@@ -40,6 +40,7 @@ const candidate = (modelId: string, name: string, kind: string, more: object = {
   batteryMin: null,
   batteryLasts: null,
   stock: 12,
+  labelLess7Db: null,
   decidedBy: "first" as const,
   ...more,
 });
@@ -182,6 +183,7 @@ function open(address: string = paths.fitting) {
   const client = createQueryClient();
   client.setQueryData(sessionQuery.queryKey, {
     pendingName: null,
+    endedAt: null,
     user: {
       id: id(20),
       name: "S. Ferrand",
@@ -191,6 +193,7 @@ function open(address: string = paths.fitting) {
       roles: ["officer"],
       organizationName: "Ostmere",
       sites: [{ id: site, name: "Ostmere works", timeZone: "Europe/London", language: "en" }],
+      visits: [],
     },
   });
   return render(
@@ -312,6 +315,32 @@ describe("the fitting desk", () => {
     await user.clear(within(left).getByLabelText("Trial 1"));
     await user.type(within(left).getByLabelText("Trial 1"), "70");
     expect(within(form).getByRole("alert")).toHaveTextContent(/more than an ear can have/);
+  });
+
+  test("where nothing has to come off nothing is passed, and under Appendix B the label less 7 stands beside", async () => {
+    at = desk({
+      ruleSetKey: "us-general-industry",
+      need: { needDb: 0, outsideDb: 84, targetDb: 90, taskName: null, mostDb: null, reason: null },
+      candidates: [
+        candidate(muff, "Fenmuff", "earmuff", {
+          labelLess7Db: 17,
+          lastFit: { parDb: 18, hasPassed: null, testedOn: "2026-12-01" },
+        }),
+      ],
+      tests: [tested({ leftDb: [18], rightDb: [18], methodSdDb: 0, bands: null }, { needDb: 0 })],
+    });
+    open(paths.fittingOf(worker));
+    await screen.findByText("Nothing has to come off.");
+    expect(screen.getAllByText("rating − 7: 17.0")).toHaveLength(2);
+    expect(screen.getByText("By its label, rating − 7: 17.0 dB.")).toBeTruthy();
+    const ear = within(screen.getByRole("form", { name: "Test the fit" })).getByRole("group", {
+      name: "Left ear",
+    });
+    await userEvent.type(within(ear).getAllByRole("textbox")[0]!, "20");
+    expect(
+      await screen.findByText(/Nothing has to come off, so there is nothing to pass\./),
+    ).toBeTruthy();
+    expect(screen.queryByText("Fits")).toBeNull();
   });
 
   test("a trial that is no number is named at its ear, and nothing is rated or sent meanwhile", async () => {

@@ -2,6 +2,7 @@ import { useLingui } from "@lingui/react";
 import { useInfiniteQuery, useQuery } from "@tanstack/react-query";
 import { useCallback, useEffect, useMemo, useRef, useState } from "react";
 import { useNavigate, useParams } from "react-router-dom";
+import { hasToPass } from "../../shared/acoustics/protection/fit-rating";
 import { formatLevel, formatLimit } from "../../shared/format/level";
 import { ruleSetVersion } from "../../shared/rule-sets";
 import type { FittingDesk } from "../../shared/schemas/fit";
@@ -251,6 +252,9 @@ function AtDesk({
         <FitTestsTable
           hidesWorker
           rows={desk.tests}
+          labelLess7Of={(modelId) =>
+            desk.candidates.find((one) => one.modelId === modelId)?.labelLess7Db ?? null
+          }
           isSelected={({ id }) => id === toIssue?.fit?.id}
           actions={
             can.issue
@@ -307,6 +311,10 @@ function OnWhichFit({ device: { fit } }: { device: ToIssue }) {
     par: formatLevel(fit.parDb, locale),
     need: formatLevel(fit.needDb, locale),
   };
+  if (fit.needDb !== null && !hasToPass(fit.needDb))
+    return (
+      <p>{i18n.t("PAR {par} dB; nothing has to come off, so there is nothing to pass.", values)}</p>
+    );
   if (fit.hasPassed === null)
     return <p>{i18n.t("PAR {par} dB; what is needed is not known.", values)}</p>;
   return fit.hasPassed ? (
@@ -330,7 +338,7 @@ function Need({ desk: { need, worker } }: { desk: FittingDesk }) {
         <p className="lead">{i18n.t("What this worker needs is not known.")}</p>
       ) : (
         <p className="lead">
-          {needDb > 0 ? (
+          {hasToPass(needDb) ? (
             <b>{i18n.t("{need} dB have to come off.", { need: formatLevel(needDb, locale) })}</b>
           ) : (
             <b>{i18n.t("Nothing has to come off.")}</b>

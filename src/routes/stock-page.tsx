@@ -12,6 +12,7 @@ import { ReplacementsTable } from "../features/stock/replacements-table";
 import { StockForm } from "../features/stock/stock-form";
 import { StockTable } from "../features/stock/stock-table";
 import { isShort, moveWord, partWord } from "../features/stock/stock-words";
+import { useMoveFocus } from "../lib/move-focus";
 import { ProtectorWays } from "./protector-frame";
 import { useSiteChoice } from "./site-choice";
 import "../styles/stock.css";
@@ -28,6 +29,7 @@ export function Component() {
   const moves = useInfiniteQuery(stockQueries.moves({ siteId }));
   const [isEntering, setEntering] = useState(false);
   const [said, setSaid] = useState("");
+  const [place, moveFocus] = useMoveFocus<HTMLDivElement>();
   const showsSite = sites.length > 1 && !site;
   const firstSite = siteId ?? sites[0]?.id ?? "";
   const shortCount = there.data?.filter(isShort).length ?? 0;
@@ -69,27 +71,30 @@ export function Component() {
             )
           }
         />
-        <p className="stock-said">
-          <Status>{said}</Status>
-        </p>
-        {isEntering && (
-          <StockForm
-            siteId={firstSite}
-            sites={sites.map(({ id, name }) => ({ value: id, label: name }))}
-            todayAt={choice.todayAt}
-            onLeave={() => setEntering(false)}
-            onSaved={(move) => {
-              setEntering(false);
-              setSaid(
-                i18n.t("Saved: {protector}, {part}, {kind}.", {
-                  protector: move.modelName,
-                  part: partWord(i18n, move.part),
-                  kind: moveWord(i18n, move.kind),
-                }),
-              );
-            }}
-          />
-        )}
+        <div ref={place}>
+          <p className="stock-said" tabIndex={-1}>
+            <Status>{said}</Status>
+          </p>
+          {isEntering && (
+            <StockForm
+              siteId={firstSite}
+              sites={sites.map(({ id, name }) => ({ value: id, label: name }))}
+              todayAt={choice.todayAt}
+              onLeave={() => setEntering(false)}
+              onSaved={(move) => {
+                setEntering(false);
+                setSaid(
+                  i18n.t("Saved: {protector}, {part}, {kind}.", {
+                    protector: move.modelName,
+                    part: partWord(i18n, move.part),
+                    kind: moveWord(i18n, move.kind),
+                  }),
+                );
+                moveFocus(".stock-said");
+              }}
+            />
+          )}
+        </div>
         {sites.length > 1 && (
           <FilterRow label={i18n.t("What is shown")}>
             <FilterSelect

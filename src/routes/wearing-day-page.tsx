@@ -1,7 +1,6 @@
 import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
-import { useState } from "react";
 import { useParams } from "react-router-dom";
 import { formatDate } from "../../shared/format/date";
 import { formatWholeLevel } from "../../shared/format/level";
@@ -9,14 +8,15 @@ import type { Locale } from "../../shared/i18n/index";
 import { ruleSetVersion } from "../../shared/rule-sets";
 import { IsoDate } from "../../shared/schemas/common";
 import type { ResultView } from "../../shared/schemas/result";
+import type { OwnReports } from "../../shared/schemas/wearing";
 import { Empty } from "../components/empty";
 import { Failed } from "../components/failed";
 import { TextLink } from "../components/link";
-import { PageBody, PageHead, Section } from "../components/page";
+import { PageBody, PageHead } from "../components/page";
 import { dayResultQuery } from "../features/results/queries";
 import { WearingCost } from "../features/results/wearing-cost";
 import { useUser } from "../features/session/session";
-import { OwnReportForm } from "../features/wearing/own-report-form";
+import { OwnSaid } from "../features/wearing/own-said";
 import { wearingQueries } from "../features/wearing/queries";
 import { useLocale } from "../lib/i18n";
 import { paths } from "../paths";
@@ -48,7 +48,8 @@ function OwnDayPage({ workerId, date }: { workerId: string; date: string }) {
   const locale = useLocale();
   const siteId = useQuery(wearingQueries.ownSite(workerId));
   const result = useQuery(dayResultQuery(workerId, date));
-  const error = siteId.error ?? result.error;
+  const reports = useQuery(wearingQueries.ownReports(workerId, date));
+  const error = siteId.error ?? result.error ?? reports.error;
   return (
     <PageBody size="worker">
       <div className="sample-page own-day">
@@ -63,12 +64,18 @@ function OwnDayPage({ workerId, date }: { workerId: string; date: string }) {
             onRetry={() => {
               void siteId.refetch();
               void result.refetch();
+              void reports.refetch();
             }}
           />
-        ) : siteId.data === undefined || !result.data ? (
+        ) : siteId.data === undefined || !result.data || !reports.data ? (
           <span className="loading-line" />
         ) : (
-          <Wearing result={result.data} workerId={workerId} siteId={siteId.data} />
+          <Wearing
+            result={result.data}
+            workerId={workerId}
+            siteId={siteId.data}
+            said={reports.data.filter((one) => one.date === date)}
+          />
         )}
       </div>
     </PageBody>
@@ -104,13 +111,13 @@ function Wearing({
   result: { input, evaluation, governing, date },
   workerId,
   siteId,
+  said,
 }: {
   result: ResultView;
   workerId: string;
   siteId: string;
+  said: OwnReports["rows"];
 }) {
-  const { i18n } = useLingui();
-  const [isSent, setSent] = useState(false);
   const ruleSet = ruleSetVersion(governing.key, governing.version);
   if (!input || !evaluation) return null;
   const worn = new Set(
@@ -126,26 +133,13 @@ function Wearing({
     <>
       {ruleSet && <WearingCost input={input} governing={ruleSet} isOwn />}
       {tasks.size > 0 && (
-        <Section title={i18n.t("How long did you wear it?")} id="own-report">
-          {isSent ? (
-            <p role="status">
-              {i18n.t("Thank you. The days that rest on it are being worked out again.")}
-            </p>
-          ) : (
-            <>
-              <p className="beneath">
-                {i18n.t("It counts together with what was seen, where nobody wrote it down.")}
-              </p>
-              <OwnReportForm
-                workerId={workerId}
-                siteId={siteId}
-                date={date}
-                tasks={[...tasks].map(([id, name]) => ({ id, name }))}
-                onSent={() => setSent(true)}
-              />
-            </>
-          )}
-        </Section>
+        <OwnSaid
+          workerId={workerId}
+          siteId={siteId}
+          date={date}
+          tasks={[...tasks].map(([id, name]) => ({ id, name }))}
+          said={said}
+        />
       )}
     </>
   );

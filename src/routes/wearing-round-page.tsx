@@ -22,6 +22,7 @@ import {
   createRoundDraftStore,
   emptyRound,
   lastTap,
+  type PendingRound,
   type RoundDraft,
   type RoundDraftStore,
   tallyWorkers,
@@ -29,7 +30,8 @@ import {
   toSend,
   undoTap,
 } from "../features/wearing/tally";
-import { ApiError, newChangeKey } from "../lib/api";
+import { ApiError, isUnreached, newChangeKey } from "../lib/api";
+import { keptActsOf } from "../lib/kept-acts";
 import { useLocale } from "../lib/i18n";
 import { useOneAtATime } from "../lib/one-at-a-time";
 import { paths } from "../paths";
@@ -291,8 +293,10 @@ function Round({
   const [said, setSaid] = useState("");
   const [isDiscarding, setDiscarding] = useState(false);
   const [wantsTap, setWantsTap] = useState(false);
+  const [isKept, setKept] = useState(false);
   const check = useRef<HTMLHeadingElement>(null);
   const send = useSendRound();
+  const acts = keptActsOf(useUser().id);
   const { begin, end } = useOneAtATime();
   const countOf = countsOf(draft.taps);
   const all = countAll(draft.taps);
@@ -327,6 +331,10 @@ function Round({
     );
   }
 
+  function leaveSent(pending: PendingRound) {
+    keep(afterSent(latest.current, pending) ?? empty);
+  }
+
   function sendIt() {
     if (draft.taps.length === 0) {
       setWantsTap(true);
@@ -337,12 +345,27 @@ function Round({
     keep({ ...draft, pending });
     send.mutate(pending, {
       onSuccess: (round) => {
-        const left = afterSent(latest.current, pending);
-        if (left) keep(left);
-        else store.remove(crewId, date);
+        leaveSent(pending);
         onSent(round);
       },
       onError: (error) => {
+        // It waits with what else is not sent, and goes under its key as soon as that can be: the round is over.
+        if (isUnreached(error) || (error instanceof ApiError && error.status === 401)) {
+          acts.hold({
+            key: pending.key,
+            path: "/wearing-rounds",
+            body: pending.body,
+            revision: null,
+            words: { kind: "round", crewName, date, looks: pending.tapCount },
+          });
+          acts.release(pending.key, true);
+          leaveSent(pending);
+          send.reset();
+          setSaid("");
+          setKept(true);
+          check.current?.focus({ preventScroll: true });
+          return;
+        }
         // Refused, and not lost on the way: what is sent next is another round.
         if (error instanceof ApiError && error.status >= 400 && error.status < 500)
           keep({ ...latest.current, pending: null });
@@ -369,6 +392,7 @@ function Round({
         workers={workers}
         countOf={countOf}
         onTap={(tap) => {
+          setKept(false);
           const taps = [...draft.taps, tap];
           keep({ ...draft, taps });
           setWantsTap(false);
@@ -450,6 +474,10 @@ function Round({
               {i18n.t("Nothing was tapped yet.")}
             </p>
           )}
+          <p role="status">
+            {isKept &&
+              i18n.t("The round is kept on this device and sent as soon as there is a connection.")}
+          </p>
           <ProblemIssues error={send.error} />
           {isWaiting && !send.isPending && (
             <p>

@@ -82,6 +82,8 @@ export type DecidedBy =
   | "underprotection"
   | "overprotection"
   | "margin"
+  /** The same where all take too much off: the least comes first. */
+  | "least-margin"
   | "fit"
   | "battery"
   | "stock"
@@ -114,6 +116,8 @@ export interface RankedProtector {
   readonly batteryMin: number | null;
   readonly batteryLasts: boolean | null;
   readonly stock: number | null;
+  /** Where Appendix B governs, the label's US number less 7, dB. Null of two worn together, and under other rules. */
+  readonly labelLess7Db: number | null;
   readonly decidedBy: DecidedBy;
 }
 
@@ -133,6 +137,7 @@ interface Prepared {
   readonly usReductionDb: number | null;
   /** Off the C-weighted level where that is known and nothing is derated. */
   readonly usRatingDb: number | null;
+  readonly labelLess7Db: number | null;
   readonly percentileDb: number | null;
   readonly slc80Db: number | null;
 }
@@ -216,8 +221,9 @@ export class ProtectorChoice {
     const ranked: RankedProtector[] = [];
     let before: number | null = null;
     for (const key of places) {
-      const index = key % count;
-      const place = (key - index) / count;
+      // By division: the rest of so large a number takes far longer, and none of these is near 2^53.
+      const place = Math.floor(key / count);
+      const index = key - place * count;
       const decidedBy = before === null ? "first" : decidingComparison(before, place);
       before = place;
       ranked.push(shownAs(prepared[index]!, found[index]!, decidedBy, hasLower));
@@ -239,8 +245,13 @@ export class ProtectorChoice {
     let wornSum = 0;
     let likeSum = 0;
     let lowSum = 0;
-    let deciding: AtEar | null = null;
-    let scaled: (Worded & { wornIn: string }) | null = null;
+    // Plain variables, and one object at the end: this runs for every worker, model and noise.
+    let decidingWord: ProtectorWord | null = null;
+    let decidingDb = Number.NaN;
+    let decidingIn: string | null = null;
+    let scaleWord: ProtectorWord | null = null;
+    let scaledDb = Number.NaN;
+    let scaleIn: string | null = null;
     let likeMarginDb = Number.POSITIVE_INFINITY;
     let lowMarginDb = Number.POSITIVE_INFINITY;
     let hasLower = true;
@@ -259,12 +270,17 @@ export class ProtectorChoice {
       const lowDb = noise.levelDb - Math.max(0, governing.lowReductionDb ?? 0);
       hasLower &&= governing.lowReductionDb !== null;
       if (isByShift) {
-        if (deciding === null || wornDb > deciding.wornDb)
-          deciding = { ...NO_MARGIN, word: null, wornDb, wornIn: noise.name };
+        if (decidingIn === null || wornDb > decidingDb) {
+          decidingDb = wornDb;
+          decidingIn = noise.name;
+        }
         if (scaleDb !== null) {
           const word = en458Word(wornDb, scaleDb);
-          if (scaled === null || decidesBefore(word, wornDb, scaled))
-            scaled = { word, wornDb, wornIn: noise.name };
+          if (scaleIn === null || decidesBefore(word, wornDb, scaleWord, scaledDb)) {
+            scaleWord = word;
+            scaledDb = wornDb;
+            scaleIn = noise.name;
+          }
         }
         wornSum += noise.durationMin * weightOf(wornDb, law);
         likeSum += noise.durationMin * weightOf(likeDb, law);
@@ -277,43 +293,32 @@ export class ProtectorChoice {
         likeMarginDb = Math.min(likeMarginDb, targetDb - likeDb);
         lowMarginDb = Math.min(lowMarginDb, targetDb - lowDb);
       }
-      if (deciding === null || decidesBefore(word, wornDb, deciding))
-        deciding = { ...NO_MARGIN, word, wornDb, wornIn: noise.name };
+      if (decidingIn === null || decidesBefore(word, wornDb, decidingWord, decidingDb)) {
+        decidingWord = word;
+        decidingDb = wornDb;
+        decidingIn = noise.name;
+      }
     }
-    if (targetDb === null && !isByShift) return deciding;
-    if (!isByShift)
-      return { ...deciding!, likeMarginDb, lowMarginDb: hasLower ? lowMarginDb : null };
     const twaOf = (sum: number) => levelFactor(law) * Math.log10(sum / law.referenceMin);
-    const twaDb = twaOf(wornSum);
-    const scaleWord = scaled?.word ?? null;
-    const scaleIn = scaled?.wornIn ?? null;
-    if (targetDb === null) return { ...deciding!, twaDb, scaleWord, scaleIn };
+    const twaDb = isByShift ? twaOf(wornSum) : null;
     return {
-      ...deciding!,
+      word:
+        twaDb === null ? decidingWord : targetDb === null ? null : appendixBWord(twaDb, targetDb),
+      wornDb: decidingDb,
+      wornIn: decidingIn!,
+      twaDb,
       scaleWord,
       scaleIn,
-      word: appendixBWord(twaDb, targetDb),
-      twaDb,
-      likeMarginDb: targetDb - twaOf(likeSum),
-      lowMarginDb: hasLower ? targetDb - twaOf(lowSum) : null,
+      likeMarginDb: targetDb === null ? null : isByShift ? targetDb - twaOf(likeSum) : likeMarginDb,
+      lowMarginDb:
+        targetDb === null || !hasLower ? null : isByShift ? targetDb - twaOf(lowSum) : lowMarginDb,
     };
   }
 }
 
-const NO_MARGIN = {
-  twaDb: null,
-  scaleWord: null,
-  scaleIn: null,
-  likeMarginDb: null,
-  lowMarginDb: null,
-} as const;
-
-interface Worded {
+interface AtEar {
   readonly word: ProtectorWord | null;
   readonly wornDb: number;
-}
-
-interface AtEar extends Worded {
   readonly wornIn: string;
   /** See `RankedProtector`. */
   readonly scaleWord: ProtectorWord | null;
@@ -412,9 +417,10 @@ function decidingComparison(before: number, place: number): DecidedBy {
   let [a, b] = [before, place];
   for (let at = COMPARISONS.length - 1; at >= 0 && a !== b; at--) {
     const [name, places] = COMPARISONS[at]!;
-    if (a % places !== b % places) decidedBy = name;
-    a = Math.floor(a / places);
-    b = Math.floor(b / places);
+    const [wholeA, wholeB] = [Math.floor(a / places), Math.floor(b / places)];
+    if (a - wholeA * places !== b - wholeB * places) decidedBy = name;
+    a = wholeA;
+    b = wholeB;
   }
   return decidedBy;
 }
@@ -432,8 +438,14 @@ function marginStep(marginDb: number | null, word: ProtectorWord | null): number
   return step >= 0 ? step : MIDDLE - step;
 }
 
+/** It is too much, by the rule or beside it, and surely enough everywhere: of those the least margin is best. */
+function isLeastFirst(atEar: AtEar | null, marginDb: number | null): boolean {
+  if (atEar === null || marginDb === null || marginDb < 0) return false;
+  return atEar.word === "too-much" || (atEar.word === "enough" && atEar.scaleWord === "too-much");
+}
+
 function shownAs(
-  { offer }: Prepared,
+  { offer, labelLess7Db }: Prepared,
   judged: Judged,
   decidedBy: DecidedBy,
   hasLower: boolean,
@@ -457,16 +469,25 @@ function shownAs(
     batteryMin: offer.inner.active?.batteryMin ?? null,
     batteryLasts,
     stock: offer.stock,
-    decidedBy,
+    labelLess7Db,
+    decidedBy:
+      decidedBy === "margin" && isLeastFirst(atEar, marginOf(judged, hasLower))
+        ? "least-margin"
+        : decidedBy,
   };
 }
 
 /** Too little before all (the loudest), then too much (the quietest), then the loudest. */
-function decidesBefore(word: ProtectorWord | null, wornDb: number, other: Worded): boolean {
+function decidesBefore(
+  word: ProtectorWord | null,
+  wornDb: number,
+  otherWord: ProtectorWord | null,
+  otherDb: number,
+): boolean {
   const rank = rankOf(word);
-  const otherRank = rankOf(other.word);
+  const otherRank = rankOf(otherWord);
   if (rank !== otherRank) return rank < otherRank;
-  return word === "too-much" ? wornDb < other.wornDb : wornDb > other.wornDb;
+  return word === "too-much" ? wornDb < otherDb : wornDb > otherDb;
 }
 
 const rankOf = (word: ProtectorWord | null): number =>
@@ -490,6 +511,13 @@ function prepare(offer: Offer, rule: Rule): Prepared {
       snrDb: inner.snrDb,
       usReductionDb: usReductionDb(inner, rule),
       usRatingDb: rule.derating === "none" ? inner.usRatingDb : null,
+      labelLess7Db:
+        rule.adequacy === "appendix-b" && inner.usRatingDb !== null
+          ? Math.max(
+              0,
+              deratedAttenuationDb(inner.usRatingDb, derateType(inner.kind), DERATINGS.none),
+            )
+          : null,
       percentileDb: inner.percentile?.mostDb ?? null,
       slc80Db: inner.slc80Db,
     };
@@ -510,6 +538,7 @@ function prepare(offer: Offer, rule: Rule): Prepared {
       hasRatings && rule.derating === "none"
         ? doubleAttenuationDb(inner.usRatingDb!, outer.usRatingDb!)
         : null,
+    labelLess7Db: null,
     percentileDb: null,
     slc80Db: null,
   };

@@ -27,7 +27,7 @@ export interface FitRating {
   readonly isOneEar: boolean;
   /** Some ear has a single trial, so that the spread between donnings is not in the uncertainty. */
   readonly hasSingleTrial: boolean;
-  /** Against what the noise asks for; null: no need is known. */
+  /** Against what the noise asks for; null: no need is known, or nothing has to come off. */
   readonly hasPassed: boolean | null;
   /** By how far it passes the need, dB. */
   readonly marginDb: number | null;
@@ -74,7 +74,8 @@ export function fitRating(trials: FitTrials): FitOutcome {
   if (highestDb > limitDb) return refused("above-bone-conduction", highestDb, limitDb);
   const isLeftWeaker = right === null || (left !== null && left.parDb <= right.parDb);
   const parDb = Math.min(...ears.map((ear) => ear.parDb));
-  const { needDb, confidencePct } = trials;
+  const { confidencePct } = trials;
+  const needDb = hasToPass(trials.needDb) ? trials.needDb : null;
   return {
     rating: {
       left,
@@ -90,6 +91,9 @@ export function fitRating(trials: FitTrials): FitOutcome {
     refusal: null,
   };
 }
+
+/** Where nothing has to come off, any fit would do: that is no passing. */
+export const hasToPass = (needDb: number | null): needDb is number => needDb !== null && needDb > 0;
 
 function refused(
   code: FitRefusal["code"],

@@ -312,10 +312,12 @@ function CurvePicture({ outcome: { curve, bands, breakEvenHz } }: { outcome: Out
         />
         {isOnScale && (
           <>
-            <path className="at-ear-even" d={`M${x(breakEvenHz)} ${yOf(0) - 8}v16`} />
+            <path className="at-ear-even" d={`M${x(breakEvenHz)} ${TOP + 2}V${yOf(0) + 8}`} />
+            {/* At the upper end, where no ring is: a band that adds noise is credited with less than nothing, and its
+                ring may stand just above the ink line. */}
             <text
               x={x(breakEvenHz)}
-              y={yOf(0) - 11}
+              y={yOf(-UP_DB) - 1}
               textAnchor={x(breakEvenHz) > widthPx / 2 ? "end" : "start"}
               className="at-ear-added-figure"
             >

@@ -34,7 +34,7 @@ export function IssueSlipPage({ slip, issuedBy }: { slip: IssueSlip; issuedBy: s
     [i18n.t("Printed by"), issuedBy],
   ];
   return (
-    <article className="field-sheet issue-slip" aria-label={worker.name}>
+    <article className="field-sheet issue-slip" lang={locale} aria-label={worker.name}>
       <header className="field-sheet-head">
         <b>Dinward</b>
         <span>
@@ -43,7 +43,7 @@ export function IssueSlipPage({ slip, issuedBy }: { slip: IssueSlip; issuedBy: s
           )}
         </span>
       </header>
-      <h2>{i18n.t("Hearing protectors, issued to you")}</h2>
+      <h2>{i18n.t("Your hearing protectors")}</h2>
       <dl className="field-sheet-facts">
         {facts.map(([label, value]) => (
           <div key={label}>
@@ -53,7 +53,7 @@ export function IssueSlipPage({ slip, issuedBy }: { slip: IssueSlip; issuedBy: s
         ))}
       </dl>
       {protectors.length === 0 ? (
-        <p>{i18n.t("No protector is assigned to this worker today.")}</p>
+        <p>{i18n.t("No protector is assigned to you today.")}</p>
       ) : (
         <table className="slip-devices">
           <thead>
@@ -75,6 +75,13 @@ export function IssueSlipPage({ slip, issuedBy }: { slip: IssueSlip; issuedBy: s
                     <span className="block">{i18n.t("size {size}", { size: device.size })}</span>
                   )}
                   <span className="block">{device.useName ?? i18n.t("everywhere in noise")}</span>
+                  <span className="block">
+                    {device.issuedOn === null
+                      ? i18n.t("assigned, not handed out yet")
+                      : i18n.t("handed out {date}", {
+                          date: formatShortDate(device.issuedOn, locale),
+                        })}
+                  </span>
                   <span className="block">{fitWords(device)}</span>
                 </th>
                 <td>

@@ -59,6 +59,7 @@ export function CandidatesTable({
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
+  const less7 = (db: number) => i18n.t("rating − 7: {level}", { level: formatLevel(db, locale) });
   const columns: DataColumn<Candidate>[] = [
     {
       id: "device",
@@ -82,7 +83,7 @@ export function CandidatesTable({
               ? exclusionWord(i18n, row.excludedBy)
               : [
                   decidedWord(i18n, row.decidedBy),
-                  row.decidedBy === "margin" &&
+                  (row.decidedBy === "margin" || row.decidedBy === "least-margin") &&
                     row.marginDb !== null &&
                     formatLevelChange(row.marginDb, locale),
                 ]
@@ -127,15 +128,24 @@ export function CandidatesTable({
     {
       id: "fit",
       head: i18n.t("Own fit"),
-      cell: ({ lastFit }) =>
+      cell: ({ lastFit, labelLess7Db }) =>
         lastFit === null ? (
-          "–"
+          labelLess7Db === null ? (
+            "–"
+          ) : (
+            <span className="two-lines">
+              –<span className="beneath wide:whitespace-nowrap">{less7(labelLess7Db)}</span>
+            </span>
+          )
         ) : (
           <span className="two-lines">
             <span className="mono">{formatLevel(lastFit.parDb, locale)}</span>
             <span className={lastFit.hasPassed === false ? "is-fault" : "beneath"}>
               {passWord(i18n, lastFit.hasPassed)}
             </span>
+            {labelLess7Db !== null && (
+              <span className="beneath wide:whitespace-nowrap">{less7(labelLess7Db)}</span>
+            )}
           </span>
         ),
     },

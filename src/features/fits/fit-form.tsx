@@ -214,6 +214,9 @@ export function FitForm({
         methodSdDb={typeof values.methodSdDb === "number" ? values.methodSdDb : 0}
         confidencePct={confidencePct}
         needDb={needDb}
+        labelLess7Db={
+          desk.candidates.find(({ modelId }) => modelId === chosenId)?.labelLess7Db ?? null
+        }
       />
       <TextAreaField form={form} name="note" label={i18n.t("Note")} rows={2} isOptional />
       <FormProblem error={record.error} />

@@ -1,5 +1,5 @@
 import { useLingui } from "@lingui/react";
-import { fitRating } from "../../../shared/acoustics/protection/fit-rating";
+import { fitRating, hasToPass } from "../../../shared/acoustics/protection/fit-rating";
 import { formatLevel } from "../../../shared/format/level";
 import { Status } from "../../components/status";
 import { useLocale } from "../../lib/i18n";
@@ -13,15 +13,19 @@ export function FitRatingLine({
   methodSdDb,
   confidencePct,
   needDb,
+  labelLess7Db = null,
 }: {
   leftDb: readonly number[];
   rightDb: readonly number[];
   methodSdDb: number;
   confidencePct: number;
   needDb: number | null;
+  /** The label’s US number less 7, where Appendix B governs, dB. */
+  labelLess7Db?: number | null;
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
+  const uprightDb = hasToPass(needDb) ? needDb : null;
   const { rating, refusal } = fitRating({ leftDb, rightDb, methodSdDb, confidencePct, needDb });
   if (refusal?.code === "above-bone-conduction")
     return (
@@ -39,7 +43,8 @@ export function FitRatingLine({
     return (
       <div className="fit-rating">
         <p className="not-assessed">{i18n.t("Type what each trial took off.")}</p>
-        <FitScale ticksDb={[]} uprightDb={needDb} />
+        <LabelLess7 db={labelLess7Db} />
+        <FitScale ticksDb={[]} uprightDb={uprightDb} />
       </div>
     );
   const { left, right, weakerEar, parDb, isOneEar, hasSingleTrial, hasPassed } = rating;
@@ -66,9 +71,13 @@ export function FitRatingLine({
               })}{" "}
         {left && i18n.t("Left {level}.", { level: formatLevel(left.parDb, locale) })}{" "}
         {right && i18n.t("Right {level}.", { level: formatLevel(right.parDb, locale) })}{" "}
-        {needDb !== null && i18n.t("Needed {need}.", { need: formatLevel(needDb, locale) })}
+        {needDb !== null &&
+          (hasToPass(needDb)
+            ? i18n.t("Needed {need}.", { need: formatLevel(needDb, locale) })
+            : i18n.t("Nothing has to come off, so there is nothing to pass."))}
       </p>
-      <FitScale ticksDb={ears} uprightDb={needDb} />
+      <LabelLess7 db={labelLess7Db} />
+      <FitScale ticksDb={ears} uprightDb={uprightDb} />
       {hasSingleTrial && (
         <p className="field-note">
           {i18n.t(
@@ -77,5 +86,17 @@ export function FitRatingLine({
         </p>
       )}
     </div>
+  );
+}
+
+/** What Appendix B takes off an A-weighted level by the label, without any derating: it stays beside every own fit. */
+function LabelLess7({ db }: { db: number | null }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  if (db === null) return null;
+  return (
+    <p className="beneath">
+      {i18n.t("By its label, rating − 7: {level} dB.", { level: formatLevel(db, locale) })}
+    </p>
   );
 }

@@ -1,5 +1,6 @@
 import { useLingui } from "@lingui/react";
 import { type ReactNode, useState } from "react";
+import { hasToPass } from "../../../shared/acoustics/protection/fit-rating";
 import { formatShortDate } from "../../../shared/format/date";
 import { formatLevel } from "../../../shared/format/level";
 import type { FitTestView } from "../../../shared/schemas/fit";
@@ -21,11 +22,14 @@ import {
 export function FitTestsTable({
   hidesWorker = false,
   actions,
+  labelLess7Of,
   ...table
 }: {
   hidesWorker?: boolean;
   /** What else can be done with a row. */
   actions?: (test: FitTestView) => ReactNode;
+  /** A model’s US number less 7, which stands beside its PAR where Appendix B governs, dB. */
+  labelLess7Of?: (modelId: string) => number | null;
 } & Pick<
   DataTableProps<FitTestView>,
   "rows" | "state" | "error" | "onRetry" | "more" | "empty" | "isSelected"
@@ -101,6 +105,7 @@ export function FitTestsTable({
           <span className="beneath">
             {notRatedWord(i18n, test) ?? i18n.t("at {pct} %", { pct: test.confidencePct })}
           </span>
+          <Less7 db={test.parDb === null ? null : (labelLess7Of?.(test.modelId) ?? null)} />
         </span>
       ),
     },
@@ -109,7 +114,8 @@ export function FitTestsTable({
       head: i18n.t("Needed"),
       unit: "dB",
       kind: "figure",
-      cell: ({ needDb }) => formatLevel(needDb, locale),
+      cell: ({ needDb }) =>
+        needDb === null || hasToPass(needDb) ? formatLevel(needDb, locale) : i18n.t("nothing"),
     },
     {
       id: "word",
@@ -186,5 +192,16 @@ export function FitTestsTable({
         <StrikeFit key={changed.id} test={changed} onDone={() => setChanging(null)} />
       )}
     </>
+  );
+}
+
+function Less7({ db }: { db: number | null }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  if (db === null) return null;
+  return (
+    <span className="beneath">
+      {i18n.t("rating − 7: {level}", { level: formatLevel(db, locale) })}
+    </span>
   );
 }

@@ -1,4 +1,5 @@
 import type { I18n } from "@lingui/core";
+import { hasToPass } from "../../../shared/acoustics/protection/fit-rating";
 import { startsSentence } from "../../../shared/format/words";
 import type {
   Candidate,
@@ -39,10 +40,12 @@ export const activeWord = (i18n: I18n, { activePassed }: FitTestView): string =>
 export const saysWord = (i18n: I18n, test: FitTestView): string =>
   test.parDb === null && test.activePassed !== null
     ? startsSentence(activeWord(i18n, test))
-    : passWord(i18n, test.hasPassed);
+    : passWord(i18n, test.needDb === null || hasToPass(test.needDb) ? test.hasPassed : null);
 
-export const isFault = ({ isVoid, hasPassed, parDb, activePassed }: FitTestView): boolean =>
-  !isVoid && (hasPassed === false || (parDb === null && activePassed === false));
+export const isFault = ({ isVoid, hasPassed, needDb, parDb, activePassed }: FitTestView): boolean =>
+  !isVoid &&
+  ((hasPassed === false && (needDb === null || hasToPass(needDb))) ||
+    (parDb === null && activePassed === false));
 
 export function endedWord(i18n: I18n, how: NonNullable<IssueView["endedHow"]>): string {
   switch (how) {
@@ -116,6 +119,8 @@ export function decidedWord(i18n: I18n, decidedBy: Candidate["decidedBy"]): stri
       return i18n.t("enough, but by EN 458 it protects too much");
     case "margin":
       return i18n.t("by the margin at the ear");
+    case "least-margin":
+      return i18n.t("by the least margin: all take too much off");
     case "fit":
       return i18n.t("by own fit");
     case "battery":

@@ -268,10 +268,18 @@ export function StretchList({
     ],
     [i18n, locale, clock, canChange],
   );
+  // Saved or thrown away, the button that did it is gone: the keyboard goes on at those that stay.
+  const acts = useRef<HTMLDivElement>(null);
+  const wasChanged = useRef(isChanged);
+  useEffect(() => {
+    if (wasChanged.current && !isChanged && document.activeElement === document.body)
+      acts.current?.querySelector("button")?.focus();
+    wasChanged.current = isChanged;
+  }, [isChanged]);
   return (
     <>
       {canChange && (
-        <div className="stretch-acts no-print">
+        <div ref={acts} className="stretch-acts no-print">
           <Button onClick={() => editing.openNew("task", null)}>{i18n.t("Add a task")}</Button>
           <Button onClick={() => editing.openNew("left-out", null)}>
             {i18n.t("Leave out a stretch")}

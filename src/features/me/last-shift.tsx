@@ -1,5 +1,6 @@
 import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
+import { lazy, Suspense } from "react";
 import { formatDay } from "../../../shared/format/date";
 import { formatLimit, formatWholeLevel } from "../../../shared/format/level";
 import type { Locale } from "../../../shared/i18n/index";
@@ -81,7 +82,18 @@ export function lastShiftSentence(i18n: I18n, locale: Locale, day: OwnDay): stri
 const hasLoudMoment = ({ kindsOver }: OwnDay) =>
   kindsOver.includes("peak") || kindsOver.includes("ceiling");
 
-export function LastShift({ day }: { day: OwnDay | null }) {
+/** After the page itself, as what it says comes from elsewhere. */
+const OwnSaid = lazy(() => import("./own-said").then(({ OwnSaid }) => ({ default: OwnSaid })));
+
+export function LastShift({
+  day,
+  workerId,
+  today,
+}: {
+  day: OwnDay | null;
+  workerId: string;
+  today: string;
+}) {
   const { i18n } = useLingui();
   const locale = useLocale();
   if (!day) return <Empty title={i18n.t("No shift of yours is recorded yet.")} />;
@@ -99,6 +111,11 @@ export function LastShift({ day }: { day: OwnDay | null }) {
         <p className="me-note">
           {i18n.t("Something was corrected; this is being worked out again.")}
         </p>
+      )}
+      {day.hasProtector !== "no" && day.origin === "computed" && (
+        <Suspense fallback={<p>&nbsp;</p>}>
+          <OwnSaid workerId={workerId} lastDate={day.date} today={today} />
+        </Suspense>
       )}
     </>
   );

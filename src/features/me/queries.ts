@@ -2,6 +2,7 @@ import { queryOptions } from "@tanstack/react-query";
 import type { z } from "zod";
 import type { FindingPage } from "../../../shared/schemas/finding";
 import type { FitTestView, IssueView } from "../../../shared/schemas/fit";
+import type { OwnReports } from "../../../shared/schemas/wearing";
 import type { HistoryPage, WorkerView } from "../../../shared/schemas/worker";
 import { api } from "../../lib/api";
 import { ownReply } from "../../lib/own-reply";
@@ -36,6 +37,18 @@ export const ownQueries = {
         api.get("/findings", {
           query: { workerId, limit: MOST_FINDINGS },
           schema: ownReply<{ rows: OwnFinding[] }>("rows"),
+          signal,
+        }),
+      select: ({ rows }) => rows,
+    }),
+  /** What was said of the own wearing from a day on. */
+  reports: (workerId: string, from: string) =>
+    queryOptions({
+      queryKey: ["me", workerId, "own-reports", from],
+      queryFn: ({ signal }) =>
+        api.get(`/workers/${workerId}/own-reports`, {
+          query: { from },
+          schema: ownReply<OwnReports>("rows"),
           signal,
         }),
       select: ({ rows }) => rows,

@@ -57,6 +57,7 @@ const teardown = protector({
   id: "sedge",
   use: "task",
   useName: "Teardown",
+  innerModelId: "00000000-0000-4000-8000-0000000000f2",
   innerName: "Sedge band",
 });
 const finding = (facts: Partial<OwnFinding> = {}): OwnFinding => ({
@@ -93,6 +94,32 @@ describe("what to do", () => {
       "In Teardown change to your Sedge band.",
     ]);
     expect(say(day(), [protector()])).toEqual(["Wear your Fenmuff in noise."]);
+  });
+
+  test("nobody changes to what is worn there already", () => {
+    expect(say(day(), [soak, protector(), teardown])).toEqual([
+      "Wear your Fenmuff in noise.",
+      "In Teardown change to your Sedge band.",
+    ]);
+    const rig = protector({ use: "task", useName: "Rig run" });
+    expect(say(day(), [soak, rig])).toEqual([
+      "In Soak run wear your Fenmuff.",
+      "In Rig run wear your Fenmuff.",
+    ]);
+  });
+
+  test("where an area has another, a task in it that goes back to the one for everywhere stays said", () => {
+    const area = protector({
+      use: "area",
+      useName: "Hall 2",
+      innerModelId: "b",
+      innerName: "Alder",
+    });
+    expect(say(day(), [protector(), area, soak])).toEqual([
+      "Wear your Fenmuff in noise.",
+      "In Hall 2 change to your Alder.",
+      "In Soak run wear your Fenmuff.",
+    ]);
   });
 
   const tooLittle = finding({

@@ -77,19 +77,34 @@ function wear(i18n: I18n, one: OwnProtector): string {
     : i18n.t("In {use} wear your {protector}.", { use: one.useName, protector });
 }
 
+const isSame = (one: OwnProtector, other: OwnProtector): boolean =>
+  one.innerModelId === other.innerModelId && one.outerName === other.outerName;
+
+/** Nobody is told to change to what is worn everywhere anyway; in an area with another one the task's own stays said. */
+function withoutRepeats(protectors: readonly OwnProtector[]): readonly OwnProtector[] {
+  const everywhere = protectors.find(({ use }) => use === "everywhere");
+  if (!everywhere) return protectors;
+  const others = protectors.some((one) => one.use === "area" && !isSame(one, everywhere));
+  return protectors.filter(
+    (one) => one === everywhere || !isSame(one, everywhere) || (one.use === "task" && others),
+  );
+}
+
 /** What is worn where, as long as nothing asks for a change. */
 function whatToWear(i18n: I18n, protectors: readonly OwnProtector[]): string[] {
-  const [main, ...others] = protectors;
+  const [main, ...others] = withoutRepeats(protectors);
   if (!main) return [];
   return [
     wear(i18n, main),
     ...others.map((one) =>
       one.useName === null
         ? i18n.t("In any other noise it is your {protector}.", { protector: nameOf(i18n, one) })
-        : i18n.t("In {use} change to your {protector}.", {
-            use: one.useName,
-            protector: nameOf(i18n, one),
-          }),
+        : isSame(one, main)
+          ? wear(i18n, one)
+          : i18n.t("In {use} change to your {protector}.", {
+              use: one.useName,
+              protector: nameOf(i18n, one),
+            }),
     ),
   ];
 }

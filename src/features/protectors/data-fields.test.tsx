@@ -117,12 +117,43 @@ test("means and deviations can be taken from the subjects", async () => {
   const onSave = show();
   await userEvent.click(cell(/^One subject a line/));
   await userEvent.paste([24, 26, 28].map((value) => same(value).join("\t")).join("\n"));
-  await userEvent.click(screen.getByText(/^Take mean and deviation/));
+  // The cells were empty: they are filled without being asked for, and nothing is left to press.
+  expect(screen.queryByText(/^Take mean and deviation/)).toBeNull();
+  expect(screen.getByText(/^3 subjects\. Mean and deviation by band above are taken/)).toBeTruthy();
   await save();
   // 24, 26 and 28 have a mean of 26 and a deviation of 2.
   expect(onSave).toHaveBeenCalledWith(
     expect.objectContaining({ bands: { meanDb: same(26), sdDb: same(2) } }),
   );
+});
+
+test("what was typed for a band stays until the subjects’ means are asked for; a broken line is no subject", async () => {
+  const onSave = show({ data: { bands: { meanDb: same(30), sdDb: same(3) } } });
+  const subjects = cell(/^One subject a line/);
+  await userEvent.click(subjects);
+  await userEvent.paste([same(24).join("\t"), same(28).join("\t"), "26\tx"].join("\n"));
+  expect(screen.getByText(/^2 subjects\. 1 line is not whole and does not count\.$/)).toBeTruthy();
+  await save();
+  // All of its faults together: 125 Hz can't be read, and 250 Hz to 8 kHz are missing.
+  const fault = screen.getByText(/^Subject 3, 125 Hz: .*Subject 3, 250 Hz: .*Subject 3, 500 Hz: /);
+  expect(fault).toBeTruthy();
+  await userEvent.clear(subjects);
+  await userEvent.click(subjects);
+  await userEvent.paste([24, 28].map((value) => same(value).join("\t")).join("\n"));
+  await save();
+  expect(onSave).toHaveBeenLastCalledWith(
+    expect.objectContaining({ bands: { meanDb: same(30), sdDb: same(3) } }),
+  );
+  await userEvent.click(screen.getByText(/^Take mean and deviation/));
+  await save();
+  expect(onSave.mock.lastCall?.[0]).toMatchObject({ bands: { meanDb: same(26) } });
+}, 15_000);
+
+test("subjects whose means were taken out again are not kept for nothing", async () => {
+  const onSave = show({ data: { subjectsDb: [same(24), same(28)] } });
+  await save();
+  expect(screen.getByText(/the subjects count for nothing/)).toBeTruthy();
+  expect(onSave).not.toHaveBeenCalled();
 });
 
 test("one bad deviation marks its own cell, and the sentence says which", async () => {

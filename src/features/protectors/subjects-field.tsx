@@ -43,10 +43,20 @@ export function SubjectsField({ form }: { form: ProtectorForm }) {
         .join("\t"),
     )
     .join("\n");
+  const bands: unknown = form.watch("data.bands");
+  /** What was taken over without being asked for: only that is taken anew. */
+  const [taken, setTaken] = useState<string | null>(null);
+  const isTaken = taken !== null && taken === JSON.stringify(bands);
   const isWritten = typed !== null && JSON.stringify(typed.value) === JSON.stringify(stored);
   const errors: unknown = get(form.formState.errors, "data.subjectsDb");
   const whole = typedFacts({ subjectsDb: stored }).subjectsDb ?? null;
+  const wholeCount = (stored ?? []).filter(isWhole).length;
 
+  const take = (subjects: readonly OctaveBandValues[]) => {
+    const found = bandsOfSubjects(subjects);
+    setTaken(JSON.stringify(found));
+    form.setValue("data.bands", found as never, { shouldDirty: true, shouldValidate: true });
+  };
   const put = (text: string) => {
     const read = readSubjects(text, locale);
     const value = read.length === 0 ? null : read;
@@ -55,6 +65,8 @@ export function SubjectsField({ form }: { form: ProtectorForm }) {
       shouldDirty: true,
       shouldValidate: form.formState.isSubmitted,
     });
+    const subjects = typedFacts({ subjectsDb: value }).subjectsDb ?? null;
+    if (subjects && (isTaken || isEmpty(form.getValues("data.bands")))) take(subjects);
   };
 
   return (
@@ -81,19 +93,22 @@ export function SubjectsField({ form }: { form: ProtectorForm }) {
           />
           <Status>
             {stored !== null &&
-              i18n.t("{count, plural, one {# subject} other {# subjects}}.", {
-                count: stored.length,
-              })}
+              [
+                i18n.t("{count, plural, one {# subject} other {# subjects}}.", {
+                  count: wholeCount,
+                }),
+                stored.length > wholeCount &&
+                  i18n.t(
+                    "{count, plural, one {# line is not whole and does not count.} other {# lines are not whole and do not count.}}",
+                    { count: stored.length - wholeCount },
+                  ),
+                isTaken && i18n.t("Mean and deviation by band above are taken from them."),
+              ]
+                .filter(Boolean)
+                .join(" ")}
           </Status>
-          {whole && (
-            <TextButton
-              onClick={() =>
-                form.setValue("data.bands", bandsOfSubjects(whole) as never, {
-                  shouldDirty: true,
-                  shouldValidate: true,
-                })
-              }
-            >
+          {whole && !isTaken && (
+            <TextButton onClick={() => take(whole)}>
               {i18n.t("Take mean and deviation by band from them")}
             </TextButton>
           )}
@@ -103,22 +118,36 @@ export function SubjectsField({ form }: { form: ProtectorForm }) {
   );
 }
 
-/** The first fault, with whose it is. */
+const isEmpty = (bands: unknown): boolean =>
+  [get(bands, "meanDb"), get(bands, "sdDb")].every(
+    (row: unknown) => !Array.isArray(row) || row.every((value) => value === null),
+  );
+
+/** A line with a number in every band, 63 Hz or not. */
+const isWhole = (subject: readonly Typed[]): boolean =>
+  subject.every((value, band) => typeof value === "number" || (band === 0 && value === null));
+
+/** More faults than these are no longer read, dozens come of one wrong paste. */
+const MOST_FAULTS = 6;
+
+/** The faults together, each with whose it is. */
 function faultOf(
   errors: unknown,
   say: (subject: number, hz: number, message: string) => string,
 ): string | undefined {
   const own = (errors as { message?: unknown } | undefined)?.message;
   if (typeof own === "string") return own;
+  const found: string[] = [];
   // The form's errors are members by index, of those that have one.
   for (const [index, bands] of Object.entries((errors ?? {}) as Record<string, unknown>)) {
     const subject = Number(index);
     const ofSubject = (bands as { message?: unknown } | undefined)?.message;
-    if (typeof ofSubject === "string") return say(subject, OCTAVE_BANDS_HZ[0], ofSubject);
+    if (typeof ofSubject === "string") found.push(say(subject, OCTAVE_BANDS_HZ[0], ofSubject));
     for (const [band, hz] of OCTAVE_BANDS_HZ.entries()) {
       const message: unknown = get(bands, `${band}.message`);
-      if (typeof message === "string") return say(subject, hz, message);
+      if (typeof message === "string") found.push(say(subject, hz, message));
     }
   }
-  return undefined;
+  if (found.length === 0) return undefined;
+  return [...found.slice(0, MOST_FAULTS), ...(found.length > MOST_FAULTS ? ["…"] : [])].join(" ");
 }

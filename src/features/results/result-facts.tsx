@@ -1,7 +1,7 @@
 import { useLingui } from "@lingui/react";
 import type { ReactNode } from "react";
 import { findingStateWord, findingWord } from "../../../shared/findings/words";
-import { formatInstant } from "../../../shared/format/date";
+import { formatInstantsApart } from "../../../shared/format/date";
 import { withinSentence } from "../../../shared/format/words";
 import { ruleSetVersion } from "../../../shared/rule-sets";
 import type { FindingKind, FindingState } from "../../../shared/schemas/finding";
@@ -23,7 +23,13 @@ export function ResultFacts({
   const { i18n } = useLingui();
   const locale = useLocale();
   const ruleSet = ruleSetVersion(result.governing.key, result.governing.version);
-  const at = (instant: string) => formatInstant(instant, result.timeZone, locale);
+  const all = [result, ...result.earlier];
+  const instants = formatInstantsApart(
+    all.map(({ computedAt }) => computedAt),
+    result.timeZone,
+    locale,
+  );
+  const at = (id: string) => instants[all.findIndex((one) => one.id === id)] ?? "";
   return (
     <aside className="working-margin" aria-label={i18n.t("About this working")}>
       <p>
@@ -31,7 +37,7 @@ export function ResultFacts({
         <br />
         {i18n.t("Method version {version}, computed {at}", {
           version: result.methodVersion,
-          at: at(result.computedAt),
+          at: at(result.id),
         })}
         <br />
         {ruleSet &&
@@ -55,7 +61,7 @@ export function ResultFacts({
           >
             {one.isCurrent
               ? i18n.t("The result that stands now")
-              : i18n.t("Earlier result, {at}", { at: at(one.computedAt) })}
+              : i18n.t("Earlier result, {at}", { at: at(one.id) })}
           </TextLink>
         </p>
       ))}

@@ -2,6 +2,8 @@ import { useLingui } from "@lingui/react";
 import { type ReactNode, useMemo } from "react";
 import type { DayEvaluation, DayInput, TimedTask } from "../../../shared/acoustics/types";
 import { buildWorking, type WorkingRecord } from "../../../shared/acoustics/working";
+import { formatDate } from "../../../shared/format/date";
+import { isolate } from "../../../shared/i18n/isolate";
 import { ruleSetVersion } from "../../../shared/rule-sets";
 import type { ResultView } from "../../../shared/schemas/result";
 import { Failed } from "../../components/failed";
@@ -97,6 +99,7 @@ function Records({
   seesMethods: boolean;
 }) {
   const { i18n } = useLingui();
+  const locale = useLocale();
   const of = (kind: WorkingRecord["kind"]) => records.filter((record) => record.kind === kind);
   const tasks = input.shifts.flatMap((shift) => shift.tasks);
   const models = tasks.flatMap(({ protection }) =>
@@ -148,6 +151,25 @@ function Records({
           <SourceLinks sources={methodsOf(tasks, result.worker.id)} />
         </p>
       )}
+      {of("wearing-round").map(({ id }) => {
+        const found = looksOf(tasks, id);
+        const source = result.sources[id];
+        if (!found || !source) return null;
+        const date = formatDate(found.lastOn, locale);
+        return (
+          <p key={id}>
+            {found.source === "own-report"
+              ? i18n.t("Wearing: own report of {date}", { date })
+              : source.label === ""
+                ? i18n.t("Wearing: observation round of {date}", { date })
+                : i18n.t("Wearing: observation round of {date} by {name}", {
+                    date,
+                    name: source.label,
+                  })}
+            {source.note && `, “${isolate(source.note)}”`}.
+          </p>
+        );
+      })}
       {of("run").map(({ id }) => (
         <p key={id}>
           {i18n.t("Reading:")} <TextLink to={paths.run(id)}>{i18n.t("its run")}</TextLink>.
@@ -156,6 +178,11 @@ function Records({
     </>
   );
 }
+
+const looksOf = (tasks: readonly TimedTask[], roundId: string) =>
+  tasks
+    .flatMap(({ wornFrom }) => (wornFrom?.how === "looks" ? wornFrom.looks : []))
+    .find((looks) => looks.roundId === roundId);
 
 /** Each task in which something is assigned, as a link to what is worn there by every method. */
 function methodsOf(tasks: readonly TimedTask[], workerId: string) {

@@ -8,6 +8,7 @@ import type {
   WorkingValue,
 } from "../../../shared/acoustics/working";
 import { reasonText } from "../../../shared/findings/reasons";
+import { formatDate } from "../../../shared/format/date";
 import { formatDose, formatShare } from "../../../shared/format/dose";
 import { formatMinutes } from "../../../shared/format/duration";
 import { equationDigits, followsAsPrinted, holdsAsPrinted } from "../../../shared/format/equation";
@@ -132,6 +133,8 @@ export function workingValueText(
       return methodText(i18n, value.method);
     case "reason":
       return reasonText(i18n, value.reason);
+    case "date":
+      return formatDate(value.date, locale);
     case "name":
       return value.name;
     case "text":

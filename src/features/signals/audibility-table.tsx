@@ -9,6 +9,7 @@ import { type DataColumn, DataTable } from "../../components/data-table";
 import { TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
 import { paths } from "../../paths";
+import "../../styles/signals.css";
 
 type Row = z.infer<typeof Audibility>;
 type Heard = Row["off"];
@@ -28,6 +29,9 @@ export function tallyOf(rows: readonly Row[]) {
   };
 }
 
+/** Where there is no such part: a phone leaves the cell out. */
+const NOTHING_HERE = <span className="nothing-here">{NO_FIGURE}</span>;
+
 /** Task by task, bare and under what is worn there: whether the signal stays audible, and by how much. */
 export function AudibilityTable({ rows, empty }: { rows: readonly Row[]; empty: ReactNode }) {
   const { i18n } = useLingui();
@@ -43,7 +47,7 @@ export function AudibilityTable({ rows, empty }: { rows: readonly Row[]; empty: 
       head,
       cell: (row) => {
         const heard = of(row);
-        return heard ? <HeardWord heard={heard} reason={row.reason} /> : NO_FIGURE;
+        return heard ? <HeardWord heard={heard} reason={row.reason} /> : NOTHING_HERE;
       },
     },
     {
@@ -51,7 +55,10 @@ export function AudibilityTable({ rows, empty }: { rows: readonly Row[]; empty: 
       head: i18n.t("Above"),
       unit: "dB",
       kind: "figure",
-      cell: (row) => formatLevelChange(of(row)?.aboveDb ?? null, locale),
+      cell: (row) => {
+        const heard = of(row);
+        return heard ? formatLevelChange(heard.aboveDb, locale) : NOTHING_HERE;
+      },
     },
     {
       id: `${id}-band`,
@@ -63,39 +70,42 @@ export function AudibilityTable({ rows, empty }: { rows: readonly Row[]; empty: 
     },
   ];
   return (
-    <DataTable<Row>
-      caption={i18n.t("Whether the signal is heard")}
-      rows={rows}
-      rowKey={({ taskId, protectorId, protectorName }) =>
-        `${taskId} ${protectorId} ${protectorName}`
-      }
-      groupOf={({ taskId, taskName }) => ({
-        key: taskId,
-        label: <TextLink to={paths.task(taskId)}>{taskName}</TextLink>,
-      })}
-      empty={empty}
-      columns={[
-        {
-          id: "worn",
-          head: i18n.t("Worn there"),
-          isRowHead: true,
-          cell: ({ protectorId, protectorName }) =>
-            protectorId === null ? (
-              i18n.t("nothing")
-            ) : (
-              <TextLink className="is-quiet" to={paths.protector(protectorId)}>
-                {protectorName}
-              </TextLink>
-            ),
-        },
-        ...heardIn(
-          "off",
-          hasActive ? i18n.t("Active part off") : i18n.t("Heard"),
-          ({ off }) => off,
-        ),
-        ...(hasActive ? heardIn("on", i18n.t("Active part on"), ({ on }) => on) : []),
-      ]}
-    />
+    <div className="audibility">
+      <DataTable<Row>
+        caption={i18n.t("Whether the signal is heard")}
+        rows={rows}
+        rowKey={({ taskId, protectorId, protectorName }) =>
+          `${taskId} ${protectorId} ${protectorName}`
+        }
+        groupOf={({ taskId, taskName }) => ({
+          key: taskId,
+          label: <TextLink to={paths.task(taskId)}>{taskName}</TextLink>,
+        })}
+        empty={empty}
+        stacksOnPhone
+        columns={[
+          {
+            id: "worn",
+            head: i18n.t("Worn there"),
+            isRowHead: true,
+            cell: ({ protectorId, protectorName }) =>
+              protectorId === null ? (
+                i18n.t("nothing")
+              ) : (
+                <TextLink className="is-quiet" to={paths.protector(protectorId)}>
+                  {protectorName}
+                </TextLink>
+              ),
+          },
+          ...heardIn(
+            "off",
+            hasActive ? i18n.t("Active part off") : i18n.t("Heard"),
+            ({ off }) => off,
+          ),
+          ...(hasActive ? heardIn("on", i18n.t("Active part on"), ({ on }) => on) : []),
+        ]}
+      />
+    </div>
   );
 }
 

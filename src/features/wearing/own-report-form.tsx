@@ -1,5 +1,6 @@
-import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
+import type { OwnReports } from "../../../shared/schemas/wearing";
+import { Button } from "../../components/button";
 import {
   Form,
   RadioGroup,
@@ -10,47 +11,45 @@ import {
 import { ProblemIssues } from "../../components/problem-issues";
 import { useChangeKey } from "../../lib/change-key";
 import { useOneAtATime } from "../../lib/one-at-a-time";
-import { ANSWERS, type Answer, OwnReportFields, ownReport } from "./own-report";
+import { ANSWERS, answerOf, answerWord } from "../../lib/wearing-answers";
+import { OwnReportFields, ownReport } from "./own-report";
 import { useSendRound } from "./queries";
 
-function answerWord(i18n: I18n, answer: Answer): string {
-  switch (answer) {
-    case "always":
-      return i18n.t("All the time");
-    case "mostly":
-      return i18n.t("Most of the time");
-    case "half":
-      return i18n.t("About half of the time");
-    case "seldom":
-      return i18n.t("Now and then");
-    case "never":
-      return i18n.t("Not at all");
-  }
-}
-
-/** A worker says, task by task, for how long the protector was worn that day. */
+/** A worker says, task by task, for how long the protector was worn that day; filled in with what was said before. */
 export function OwnReportForm({
   workerId,
   siteId,
   date,
   tasks,
+  said,
   onSent,
+  onLeave,
 }: {
   workerId: string;
   siteId: string;
   date: string;
   tasks: readonly { readonly id: string; readonly name: string }[];
+  said: OwnReports["rows"];
   onSent: () => void;
+  onLeave: (() => void) | undefined;
 }) {
   const { i18n } = useLingui();
   const send = useSendRound();
   const changeKey = useChangeKey();
   const { begin, end } = useOneAtATime();
+  const saidOf = (taskId: string) => said.find((one) => one.taskId === taskId);
   const form = useSchemaForm(OwnReportFields, {
     mode: "onSubmit",
-    defaultValues: { answers: Object.fromEntries(tasks.map(({ id }) => [id, null])), note: "" },
+    defaultValues: {
+      answers: Object.fromEntries(
+        tasks.map(({ id }) => {
+          const before = saidOf(id);
+          return [id, before ? answerOf(before) : null];
+        }),
+      ),
+      note: said[0]?.note ?? "",
+    },
   });
-  const { errors } = form.formState;
   return (
     <Form
       labels="above"
@@ -74,16 +73,16 @@ export function OwnReportForm({
           choices={ANSWERS.map((answer) => ({ value: answer, label: answerWord(i18n, answer) }))}
         />
       ))}
-      {errors.answers && (
-        <p className="field-error" role="alert">
-          {i18n.t("Choose an answer for one task at least.")}
-        </p>
-      )}
       <TextAreaField form={form} name="note" label={i18n.t("Note")} rows={3} isOptional />
       <ProblemIssues error={send.error} />
       <SubmitButton size="worker" isBusy={send.isPending}>
         {i18n.t("Send")}
       </SubmitButton>
+      {onLeave && (
+        <Button size="worker" onClick={onLeave}>
+          {i18n.t("Leave it")}
+        </Button>
+      )}
     </Form>
   );
 }

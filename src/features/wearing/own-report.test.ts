@@ -17,7 +17,8 @@ test("an answer is so many of four looks; a task without one is left out", () =>
   ]);
 });
 
-test("some answer is needed", () => {
-  expect(OwnReportFields.safeParse({ answers: { [press]: null }, note: "" }).success).toBe(false);
+test("some answer is needed, and the fault stands at the first task", () => {
+  const empty = OwnReportFields.safeParse({ answers: { [press]: null, [saw]: null }, note: "" });
+  expect(empty.error?.issues.map(({ path }) => path)).toEqual([["answers", press]]);
   expect(OwnReportFields.safeParse({ answers: { [press]: "half" }, note: "" }).success).toBe(true);
 });

@@ -1,20 +1,14 @@
 import { z } from "zod";
 import type { WearingRoundInput } from "../../../shared/schemas/wearing";
+import { ANSWER_LOOKS, ANSWERS, WORN_OF_ANSWER } from "../../lib/wearing-answers";
 
-/** What somebody can say of themselves, as worn of this many looks: no memory is finer than quarters. */
-const LOOKS = 4;
-const WORN_OF_LOOKS = { always: 4, mostly: 3, half: 2, seldom: 1, never: 0 } as const;
-
-export const ANSWERS = ["always", "mostly", "half", "seldom", "never"] as const;
-export type Answer = (typeof ANSWERS)[number];
-
-/** Answers by task, as the form holds them. */
+/** Answers by task, as the form holds them. Without any, the fault is the first task's. */
 export const OwnReportFields = z.object({
-  answers: z
-    .record(z.uuid(), z.enum(ANSWERS).nullable())
-    .refine((answers) => Object.values(answers).some((answer) => answer !== null), {
-      params: { code: "required" },
-    }),
+  answers: z.record(z.uuid(), z.enum(ANSWERS).nullable()).superRefine((answers, context) => {
+    const [first] = Object.keys(answers);
+    if (first !== undefined && Object.values(answers).every((answer) => answer === null))
+      context.addIssue({ code: "custom", path: [first], params: { code: "answer-needed" } });
+  }),
   note: z.string().trim().max(2000),
 });
 
@@ -35,8 +29,8 @@ export function ownReport(
             {
               workerId: of.workerId,
               taskId,
-              wornCount: WORN_OF_LOOKS[answer],
-              seenCount: LOOKS,
+              wornCount: WORN_OF_ANSWER[answer],
+              seenCount: ANSWER_LOOKS,
             },
           ],
     ),

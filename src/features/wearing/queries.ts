@@ -5,6 +5,7 @@ import {
   useQueryClient,
 } from "@tanstack/react-query";
 import {
+  OwnReports,
   WearingCrews,
   WearingRoundPage,
   WearingRoundView,
@@ -12,6 +13,7 @@ import {
 } from "../../../shared/schemas/wearing";
 import type { WorkerView } from "../../../shared/schemas/worker";
 import { api } from "../../lib/api";
+import { orLastSeen } from "../../lib/last-seen";
 import { ownReply } from "../../lib/own-reply";
 import type { PendingRound } from "./tally";
 
@@ -20,18 +22,24 @@ export const wearingQueries = {
     queryOptions({
       queryKey: ["wearing", "crews", date],
       queryFn: ({ signal }) =>
-        api.get("/wearing-crews", { query: { date }, schema: WearingCrews, signal }),
+        orLastSeen(`wearing-crews ${date}`, () =>
+          api.get("/wearing-crews", { query: { date }, schema: WearingCrews, signal }),
+        ),
+      networkMode: "always",
       select: ({ rows }) => rows,
     }),
   tally: (crewId: string, date: string) =>
     queryOptions({
       queryKey: ["wearing", "tally", crewId, date],
       queryFn: ({ signal }) =>
-        api.get(`/crews/${crewId}/wearing-tally`, {
-          query: { date },
-          schema: WearingTally,
-          signal,
-        }),
+        orLastSeen(`wearing-tally ${crewId} ${date}`, () =>
+          api.get(`/crews/${crewId}/wearing-tally`, {
+            query: { date },
+            schema: WearingTally,
+            signal,
+          }),
+        ),
+      networkMode: "always",
     }),
   /** The site of a worker's own, under which an own report goes. */
   ownSite: (workerId: string) =>
@@ -43,6 +51,18 @@ export const wearingQueries = {
           signal,
         }),
       select: ({ siteId }) => siteId,
+    }),
+  /** What a worker said of their own wearing from a day on. */
+  ownReports: (workerId: string, from: string) =>
+    queryOptions({
+      queryKey: ["wearing", "own-reports", workerId, from],
+      queryFn: ({ signal }) =>
+        api.get(`/workers/${workerId}/own-reports`, {
+          query: { from },
+          schema: OwnReports,
+          signal,
+        }),
+      select: ({ rows }) => rows,
     }),
   rounds: (filter: { siteId?: string | undefined }) =>
     infiniteQueryOptions({
@@ -62,7 +82,7 @@ export const wearingQueries = {
 function useSettled() {
   const client = useQueryClient();
   return () => {
-    for (const name of ["wearing", "results", "days", "workers", "findings", "waiting"])
+    for (const name of ["wearing", "results", "days", "workers", "findings", "waiting", "me"])
       void client.invalidateQueries({ queryKey: [name] });
   };
 }

@@ -65,9 +65,20 @@ export function RoundsTable({
     {
       id: "note",
       head: i18n.t("Note"),
-      cell: ({ note, struckReason }): ReactNode =>
+      cell: ({ note, struckReason, looks }): ReactNode =>
         struckReason === null ? (
-          note
+          looks.some(({ isReplaced }) => isReplaced) ? (
+            <span className="two-lines">
+              <b>
+                {looks.every(({ isReplaced }) => isReplaced)
+                  ? i18n.t("Replaced by a later report, counts nowhere")
+                  : i18n.t("Replaced in part by a later report")}
+              </b>
+              <span className="beneath">{note}</span>
+            </span>
+          ) : (
+            note
+          )
         ) : (
           <span className="two-lines">
             <b>{i18n.t("Struck, counts nowhere")}</b>
@@ -144,8 +155,14 @@ function RoundLooks({ round }: { round: WearingRoundView }) {
             id: "worn",
             head: i18n.t("Worn"),
             kind: "right",
-            cell: ({ wornCount, seenCount }) =>
-              i18n.t("{worn} of {seen} looks", { worn: wornCount, seen: seenCount }),
+            cell: ({ wornCount, seenCount, isReplaced }) => (
+              <span className="two-lines">
+                {i18n.t("{worn} of {seen} looks", { worn: wornCount, seen: seenCount })}
+                {isReplaced && (
+                  <span className="beneath">{i18n.t("replaced by a later report")}</span>
+                )}
+              </span>
+            ),
           },
         ]}
       />

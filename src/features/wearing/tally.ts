@@ -1,4 +1,5 @@
 import type { WearingRoundInput, WearingTally } from "../../../shared/schemas/wearing";
+import { createKeptList, KEPT } from "../../lib/kept-list";
 
 /** One look at one person: worn or not. What is counted follows from the taps, so that the last can be taken back. */
 export interface Tap {
@@ -131,8 +132,6 @@ export function tapsBeside({ workers }: WearingTally, taps: readonly Tap[]): Tap
   return taps.filter((tap) => !listed.has(pairOf(tap)));
 }
 
-const VERSION = 1;
-const keyOf = (userId: string) => `dinward.wearing.${VERSION}.${userId}`;
 const nameOf = ({ crewId, date }: Pick<RoundDraft, "crewId" | "date">) => `${crewId} ${date}`;
 
 const isDraft = (value: unknown): value is RoundDraft =>
@@ -154,36 +153,21 @@ export interface RoundDraftStore {
 
 /** Rounds that are not sent yet, by user: two people at one phone do not see each other's. */
 export function createRoundDraftStore(storage: Storage, userId: string): RoundDraftStore {
-  const key = keyOf(userId);
-  function readAll(): Map<string, RoundDraft> {
-    try {
-      const value: unknown = JSON.parse(storage.getItem(key) ?? "[]");
-      const drafts = Array.isArray(value) ? value.filter(isDraft) : [];
-      return new Map(drafts.map((draft) => [nameOf(draft), draft]));
-    } catch {
-      // Something else wrote here: there is no draft of ours to lose.
-      return new Map();
-    }
-  }
-  function writeAll(drafts: Map<string, RoundDraft>) {
-    try {
-      if (drafts.size === 0) storage.removeItem(key);
-      else storage.setItem(key, JSON.stringify([...drafts.values()]));
-    } catch {
-      // Full, or not allowed: what was tapped still stands on the page.
-    }
-  }
-  function remove(crewId: string, date: string) {
-    const drafts = readAll();
-    if (drafts.delete(nameOf({ crewId, date }))) writeAll(drafts);
-  }
+  const drafts = createKeptList({
+    storage,
+    name: KEPT.rounds,
+    userId,
+    idOf: nameOf,
+    isItem: isDraft,
+  });
   return {
-    list: () => [...readAll().values()].toSorted((a, b) => a.date.localeCompare(b.date)),
-    read: (crewId, date) => readAll().get(nameOf({ crewId, date })) ?? null,
+    list: () => drafts.list().toSorted((a, b) => a.date.localeCompare(b.date)),
+    read: (crewId, date) =>
+      drafts.list().find((draft) => nameOf(draft) === nameOf({ crewId, date })) ?? null,
     write(draft) {
-      if (draft.taps.length === 0) remove(draft.crewId, draft.date);
-      else writeAll(readAll().set(nameOf(draft), draft));
+      if (draft.taps.length === 0) drafts.remove(nameOf(draft));
+      else drafts.put(draft);
     },
-    remove,
+    remove: (crewId, date) => drafts.remove(nameOf({ crewId, date })),
   };
 }
