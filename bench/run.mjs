@@ -1,7 +1,7 @@
 /**
  * npm run bench -- [--shifts=N] [part…]
  * Measures what the issue of speed is about, each figure beside a bound that is measured in the same run: engine,
- * history, recordings, microphones, choosing, pages, screens, saving, trail, export, histories. Sets up a database of its own, filled with scale data,
+ * history, recordings, microphones, choosing, timetable, pages, screens, saving, trail, export, histories. Sets up a database of its own, filled with scale data,
  * and removes it. At the size that it has unless told otherwise, the whole takes less than five minutes on two cores with
  * nothing else to do.
  */
@@ -27,6 +27,7 @@ const allParts = [
   "recordings",
   "microphones",
   "choosing",
+  "timetable",
   "pages",
   "screens",
   "saving",

@@ -22,6 +22,12 @@ import { training } from "./20261202092100-training";
 import { calendarFeeds } from "./20261202092200-calendar-feeds";
 import { resultLetters } from "./20261202094000-result-letters";
 import { plans } from "./20261202096000-plans";
+import { timetables } from "./20261202100100-timetables";
+import { visitors } from "./20261202110000-visitors";
+import { recordReads } from "./20261202110100-record-reads";
+import { apiTokens } from "./20261202110200-api-tokens";
+import { groupMappings } from "./20261202110300-group-mappings";
+import { recordDraws } from "./20261202140000-record-draws";
 
 /** In the order in which they run. */
 export const migrations = [
@@ -49,4 +55,10 @@ export const migrations = [
   training,
   calendarFeeds,
   plans,
+  timetables,
+  visitors,
+  recordReads,
+  apiTokens,
+  groupMappings,
+  recordDraws,
 ];

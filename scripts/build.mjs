@@ -28,6 +28,7 @@ const threads = {
   "history-worker": "histories/history-worker",
   "analyse-worker": "recordings/analyse-worker",
   "pair-worker": "recordings/pair-worker",
+  "timetable-worker": "timetables/timetable-worker",
 };
 const dist = join(projectFolder, "dist");
 const recordFile = join(dist, "build.json");

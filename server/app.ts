@@ -3,6 +3,7 @@ import { existsSync } from "node:fs";
 import path from "node:path";
 import express, { type ErrorRequestHandler, type Express, type Request } from "express";
 import helmet from "helmet";
+import { unlessBearer } from "./auth/bearer";
 import { Provider } from "./auth/provider";
 import { limitTries } from "./auth/rate-limit";
 import { defineAuthRoutes, localPath } from "./auth/routes";
@@ -112,8 +113,8 @@ export function createApp(
   // Behind one address a whole works may read its letters; a secret of 24 bytes is not guessed at this rate.
   api.use("/calendar", limitTries("calendar", 120, 10));
   api.use("/acknowledgements", limitTries("acknowledgement", 120, 10));
-  api.use(...sessions(config));
-  api.use(refuseForgery);
+  api.use(...sessions(config).map(unlessBearer));
+  api.use(unlessBearer(refuseForgery));
   api.use(express.json({ limit: "4mb" }));
 
   if (routes.length === 0) {

@@ -7,6 +7,7 @@ import { checkMicrophones } from "./jobs/check-microphones";
 import { lookAfter } from "./jobs/look-after";
 import { readHistoryImport } from "./jobs/read-history";
 import { recomputeStaleDays } from "./jobs/recompute-stale-days";
+import { searchTimetable } from "./jobs/search-timetable";
 import { sendEscalation } from "./jobs/send-escalation";
 import { sendNotice } from "./jobs/send-notice";
 import { sealTrail } from "./lib/audit";
@@ -52,6 +53,7 @@ const taskList: TaskList = {
   "read-history": job("read-history", (payload) => readHistoryImport(payload)),
   "analyse-recording": job("analyse-recording", (payload) => analyseStoredRecording(payload)),
   "check-microphones": job("check-microphones", (payload) => checkMicrophones(payload)),
+  "solve-timetable": job("solve-timetable", (payload) => searchTimetable(payload)),
   "look-after": job("look-after", () => lookAfter()),
 };
 

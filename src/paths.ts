@@ -1,3 +1,6 @@
+/** Of a day of one's own, the part where somebody says how long the protector was worn. */
+export const OWN_REPORT = "own-report";
+
 /** Every address of the application, so that no page spells another's. */
 export const paths = {
   home: "/",
@@ -13,6 +16,8 @@ export const paths = {
   imports: "/days/import",
   workers: "/workers",
   worker: (id: string) => `/workers/${id}`,
+  /** Who can see a worker's record. */
+  workerAccess: (id: string) => `/workers/${id}/access`,
   /** Where a protector is assigned, with what is proposed filled in. */
   assign: (
     workerId: string,
@@ -87,6 +92,9 @@ export const paths = {
   plans: "/plans",
   plan: (id: string) => `/plans/${id}`,
   tryChanges: "/plans/try",
+  newTimetable: "/plans/timetable",
+  newTimetableFor: (kind: "crew" | "job", id: string) => `/plans/timetable?${kind}=${id}`,
+  timetable: (id: string) => `/plans/timetable/${id}`,
   tryChangesFor: (kind: "worker" | "job" | "area", id: string) => `/plans/try?${kind}=${id}`,
 
   rules: "/rules",
@@ -102,11 +110,18 @@ export const paths = {
   crewSheet: "/crew-sheet",
   crewSheetOf: (crewId: string) => `/crew-sheet/${crewId}`,
   me: "/me",
+  account: "/account",
   myDay: (date: string) => `/me/days/${date}`,
   yearFile: "/year-file",
+  /** Records drawn at random from a year. */
+  draw: (id: string) => `/year-file/draws/${id}`,
   trail: "/trail",
   trailCheck: "/trail/check",
   people: "/people",
+  visitors: "/people/visitors",
+  groups: "/people/groups",
+  /** Who read whose record. */
+  reads: "/trail/reads",
   person: (id: string) => `/people/${id}`,
   sites: "/sites",
 } as const;

@@ -68,6 +68,7 @@ export function createRoutes(queryClient: QueryClient, i18n: I18n): RouteObject[
               "officer",
               "auditor",
               "supervisor",
+              "visitor",
             ]),
             withWords(i18n, ["day", "rules"], dayRoutes, ["officer"]),
             withWords(i18n, ["people", "rules"], peopleRoutes, []),

@@ -10,6 +10,7 @@ const SOURCES = [
   "package-lock.json",
   "public",
   "scripts/build.mjs",
+  "scripts/lib/catalogue-parts.mjs",
   "seeders",
   "server",
   "shared",
@@ -19,8 +20,8 @@ const SOURCES = [
   "vite.config.ts",
 ];
 
-/** Catalogues are compiled from the .po files beside them, so only those are sources. */
-const isCompiledCatalogue = (path) => /^shared\/i18n\/(?!index\.)[\w-]+\.ts$/.test(path);
+/** Catalogues are compiled from the .po files and the texts in the sources. */
+const isCompiledCatalogue = (path) => path.startsWith("shared/i18n/compiled/");
 const isTest = (path) => /\.test\.tsx?$/.test(path);
 
 function listFiles(path) {

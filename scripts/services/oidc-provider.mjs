@@ -45,6 +45,7 @@ const texts = {
     nobody: "Nobody is known here yet: the demo has not been filled.",
     unverified: "e-mail not verified",
     noRole: "no role granted",
+    inGroups: (groups) => `in the group ${groups}`,
     expiredTitle: "This sign-in has expired",
     expired: "Go back to Dinward and sign in again.",
     back: "Back to Dinward",
@@ -72,6 +73,7 @@ const texts = {
     nobody: "Hier ist noch niemand bekannt: Die Demo ist noch nicht gefüllt.",
     unverified: "E-Mail nicht bestätigt",
     noRole: "keine Rolle vergeben",
+    inGroups: (groups) => `in der Gruppe ${groups}`,
     expiredTitle: "Diese Anmeldung ist abgelaufen",
     expired: "Gehen Sie zurück zu Dinward und melden Sie sich neu an.",
     back: "Zurück zu Dinward",
@@ -144,7 +146,7 @@ const provider = new Provider(OIDC_ISSUER, {
   claims: {
     openid: ["sub"],
     email: ["email", "email_verified"],
-    profile: ["name", "locale"],
+    profile: ["name", "locale", "groups"],
   },
   conformIdTokenClaims: false,
   interactions: { policy, url: (_context, interaction) => `/interaction/${interaction.uid}` },
@@ -175,6 +177,7 @@ const provider = new Provider(OIDC_ISSUER, {
         email_verified: person.emailVerified,
         name: person.name,
         locale: person.language,
+        groups: person.groups,
       }),
     };
   },
@@ -242,7 +245,8 @@ function showSignedOut(context) {
 function describeRoles(person, t) {
   const roles = (person.roles ?? []).map((role) => t.roles[role] ?? role);
   const notes = [];
-  if (roles.length === 0) notes.push(t.noRole);
+  if (person.groups?.length > 0) notes.push(t.inGroups(person.groups.join(", ")));
+  else if (roles.length === 0) notes.push(t.noRole);
   if (!person.emailVerified) notes.push(t.unverified);
   return [...roles, ...notes].join(" · ");
 }

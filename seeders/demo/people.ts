@@ -1,4 +1,5 @@
 import type { Role } from "../../server/lib/policy";
+import type { Locale } from "../../shared/i18n";
 import type { SiteKey } from "./programme";
 
 /** Everybody here is invented. Dates are given in days before the day of seeding. */
@@ -211,9 +212,11 @@ export interface DemoPerson {
   name: string;
   email: string;
   emailVerified: boolean;
-  language: "en" | "de";
+  language: Locale;
   /** Without grants: somebody the provider knows and Dinward does not. */
   grants: readonly { role: Role; site: SiteKey | null }[];
+  /** Groups that the provider states; a role may follow one. */
+  groups?: readonly string[];
   worker?: string;
   /** Crews under this supervisor. */
   supervises?: readonly string[];
@@ -322,9 +325,20 @@ export const PEOPLE: readonly DemoPerson[] = [
   person("q.merriweather", "Q. Merriweather-Ito", OSTMERE, [], {
     note: "Known to the provider, granted nothing: refused",
   }),
+  person("w.sundqvist", "W. Sundqvist-Roe", OSTMERE, [], {
+    groups: ["Noise readers"],
+    note: "Granted nothing by hand: an auditor of Ostmere works by a group",
+  }),
   person("n.okwuosa", "N. Okwuosa", "post.example", [], {
     worker: "3352",
     bindsByCode: true,
     note: "Worker without e-mail at work",
   }),
 ];
+
+/** Roles that follow a group of the sign-in service. */
+export const GROUP_ROLES: readonly {
+  groupName: string;
+  role: Exclude<Role, "worker">;
+  site: SiteKey;
+}[] = [{ groupName: "Noise readers", role: "auditor", site: "ostmere" }];

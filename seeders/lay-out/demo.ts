@@ -13,7 +13,7 @@ import { layOutHistories } from "./histories";
 import { measureBeforehand, measureSince, sendOutToday } from "./measurements";
 import { leaveSomeToTell, markSent, tellInThePast } from "./notices";
 import { writePeopleFile } from "./people-file";
-import { layOutPlans } from "./plans";
+import { layOutPlans, layOutTimetable } from "./plans";
 import { Demo, known, layOutProgramme } from "./programme";
 import { layOutProtection, layOutRounds } from "./protection";
 import { layOutRecordings } from "./recordings";
@@ -106,6 +106,7 @@ export async function layOutDemo({
   await layOutTraining(demo);
   await compute(await staleDays(demo), new Date(now.getTime() - 60_000));
   await layOutPlans(demo);
+  await layOutTimetable(demo);
   await sendOutToday(demo, now);
   await tellOfCalibration(demo);
   await markSent(demo, now, publicUrl);

@@ -13,6 +13,7 @@ import { createTask } from "../../server/commands/create-task";
 import { createUser } from "../../server/commands/create-user";
 import { createWorker } from "../../server/commands/create-worker";
 import { issueSignInCode } from "../../server/commands/issue-sign-in-code";
+import { mapGroup } from "../../server/commands/map-group";
 import { execute, inTransaction } from "../../server/lib/db";
 import { Actor } from "../../server/lib/policy";
 import type { Instrument } from "../../server/models/instrument";
@@ -25,7 +26,7 @@ import { NewProtectorInput } from "../../shared/schemas/protector";
 import { InstrumentInput } from "../../shared/schemas/run";
 import { NewTaskInput } from "../../shared/schemas/task";
 import { ASSIGNMENTS } from "../demo/assignments";
-import { type DemoPerson, type DemoWorker, PEOPLE, WORKERS } from "../demo/people";
+import { type DemoPerson, type DemoWorker, GROUP_ROLES, PEOPLE, WORKERS } from "../demo/people";
 import {
   AREAS,
   CREWS,
@@ -254,6 +255,9 @@ async function layOutUsers(demo: Demo, actor: Actor): Promise<void> {
     });
     demo.actors.set(person.sub, await loadActor(id, 1));
   }
+  const administrator = known(demo.actors, "i.vandermolen");
+  for (const { groupName, role, site } of GROUP_ROLES)
+    await mapGroup(administrator, { groupName, role, siteId: known(demo.sites, site).id });
 }
 
 async function layOutCrews(demo: Demo): Promise<void> {

@@ -13,6 +13,18 @@ export interface ProviderIdentity {
   email: string | null;
   name: string;
   idToken: string | null;
+  /** Groups that the provider states; none where it states none. */
+  groups: string[];
+}
+
+const GROUPS_AT_MOST = 500;
+
+/** The claim "groups", a list of names; whatever else stands there names no group. */
+function groupsIn(claim: unknown): string[] {
+  const names = Array.isArray(claim) ? claim : [claim];
+  return names
+    .filter((name): name is string => typeof name === "string" && name !== "")
+    .slice(0, GROUPS_AT_MOST);
 }
 
 /** openid-client's strategy, with state and nonce beside PKCE whatever the provider supports. */
@@ -87,7 +99,9 @@ export class Provider {
     const claims = tokens.claims();
     if (!claims) throw new Error("the provider sent no identity");
     let person: Record<string, unknown> = claims;
-    if (person.email === undefined && configuration.serverMetadata().userinfo_endpoint) {
+    // Either may stand in the identity itself or behind the provider's address for more.
+    const isWhole = person.email !== undefined && person.groups !== undefined;
+    if (!isWhole && configuration.serverMetadata().userinfo_endpoint) {
       person = {
         ...claims,
         ...(await client.fetchUserInfo(configuration, tokens.access_token, claims.sub)),
@@ -100,6 +114,7 @@ export class Provider {
       email: isVerified && typeof person.email === "string" ? person.email : null,
       name: typeof person.name === "string" ? person.name : claims.sub,
       idToken: tokens.id_token ?? null,
+      groups: groupsIn(person.groups),
     };
   }
 

@@ -82,12 +82,12 @@ export class UnfinishedTries {
   }
 
   /**
-   * Counts a try, until it ends well.
+   * Counts a try, until it ends well; by address, unless something else is to be counted.
    *
    * @throws AppError too-many-tries
    */
-  async begin(request: Request): Promise<void> {
-    const { totalHits, resetTime } = await this.store.increment(keyOf(request));
+  async begin(request: Request, key = keyOf(request)): Promise<void> {
+    const { totalHits, resetTime } = await this.store.increment(key);
     if (totalHits > this.limit) throw tooManyTries(request, resetTime ?? new Date());
   }
 

@@ -7,10 +7,13 @@ import {
   SignOutView,
   WorkerCodeInput,
 } from "../../shared/schemas/session";
+import { admitByGroup, followGroups } from "../commands/follow-groups";
 import { recordAudit } from "../lib/audit";
 import { execute, inTransaction, row, rows } from "../lib/db";
 import { endpoint } from "../lib/endpoint";
 import { AppError, issue, unprocessable } from "../lib/errors";
+import { inForce, lastEnd } from "../lib/grants";
+import { Actor } from "../lib/policy";
 import { loadActor } from "./actor";
 import { type Provider, type ProviderIdentity, STRATEGY } from "./provider";
 import { UnfinishedTries } from "./rate-limit";
@@ -40,6 +43,37 @@ async function findGranted(identity: ProviderIdentity): Promise<Candidate | null
       { issuer: identity.issuer, subject: identity.subject, email: identity.email ?? "" },
     ),
   );
+}
+
+/**
+ * Who is known here, with the roles that their groups give at this moment; or who is let in by a group alone, where the
+ * groups are those of one organization.
+ */
+async function findUser(identity: ProviderIdentity): Promise<Candidate | null> {
+  const known = await findGranted(identity);
+  if (known) {
+    await inTransaction({ organizationId: known.organizationId }, () =>
+      followGroups(known, identity.groups),
+    );
+    return known;
+  }
+  const organizations = await inTransaction(
+    { settings: { "app.sign_in_groups": JSON.stringify(identity.groups) }, readOnly: true },
+    async () =>
+      rows<{ id: string }>(
+        "SELECT DISTINCT organization_id AS id FROM group_mappings WHERE ended_at IS NULL LIMIT 2",
+      ),
+  );
+  const [organization] = organizations;
+  if (!organization || organizations.length > 1) return null;
+  const organizationId = organization.id;
+  return inTransaction({ organizationId }, async () => {
+    const made = await admitByGroup(organizationId, identity);
+    if (!made) return null;
+    const user = { ...made, organizationId, issuer: identity.issuer };
+    await followGroups(user, identity.groups);
+    return user;
+  });
 }
 
 async function enter(
@@ -135,9 +169,9 @@ export function defineAuthRoutes(provider: Provider): void {
         return;
       }
       if (isSigningIn) await unfinished.endWell(request);
-      const user = await findGranted(identity);
-      const isGranted = user && (await hasGrant(user));
-      if (user && isGranted) {
+      const user = await findUser(identity);
+      const held = user && (await heldBy(user));
+      if (user && held?.isGranted) {
         await enter(request, response, user, identity);
         response.redirect(localPath(returnTo));
         return;
@@ -145,6 +179,7 @@ export function defineAuthRoutes(provider: Provider): void {
       const { issuer, subject, email, name } = identity;
       await rotateSession(request, response, {
         pending: { issuer, subject, email, name },
+        endedAt: held?.endedAt?.toISOString(),
         idToken: identity.idToken ?? undefined,
       });
       response.redirect("/no-access");
@@ -164,7 +199,7 @@ export function defineAuthRoutes(provider: Provider): void {
       const { pending, idToken } = request.session;
       if (!pending) throw new AppError("signed-out", 401);
       const user = await bindWorker(pending, body);
-      await enter(request, response, user, { ...pending, idToken: idToken ?? null });
+      await enter(request, response, user, { ...pending, idToken: idToken ?? null, groups: [] });
       return { returnTo: "/" };
     },
   );
@@ -189,11 +224,21 @@ export function defineAuthRoutes(provider: Provider): void {
     "/session",
     { summary: "Who is signed in", may: "public", reply: SessionView },
     async ({ request }) => {
-      const { userId, organizationId, epoch, pending } = request.session;
-      if (!userId || !organizationId) return { user: null, pendingName: pending?.name ?? null };
+      const { userId, organizationId, epoch, pending, endedAt = null } = request.session;
+      if (!userId || !organizationId)
+        return { user: null, pendingName: pending?.name ?? null, endedAt };
       return inTransaction({ organizationId, readOnly: true }, async () => {
-        const actor = await loadActor(userId, epoch ?? 0).catch(() => null);
-        if (!actor) return { user: null, pendingName: null };
+        const actor = await loadActor(userId, epoch ?? 0).catch((error: unknown) =>
+          error instanceof AppError ? error.code : null,
+        );
+        if (!(actor instanceof Actor)) {
+          const left = actor === "access-ended" ? await leftBehind(userId) : null;
+          return {
+            user: null,
+            pendingName: left?.name ?? null,
+            endedAt: left?.endedAt?.toISOString() ?? null,
+          };
+        }
         const organization = await row<{ name: string }>(
           "SELECT name FROM organizations WHERE id = :organizationId",
           { organizationId },
@@ -202,7 +247,7 @@ export function defineAuthRoutes(provider: Provider): void {
           `SELECT id, name, time_zone AS "timeZone", language FROM sites ORDER BY name`,
         );
         const reachable = sites.filter(({ id }) =>
-          actor.grants.some(({ siteId }) => siteId === null || siteId === id),
+          [...actor.grants, ...actor.visits].some(({ siteId }) => siteId === null || siteId === id),
         );
         return {
           user: {
@@ -211,27 +256,38 @@ export function defineAuthRoutes(provider: Provider): void {
             email: actor.email,
             language: actor.language,
             workerId: actor.workerId,
-            roles: [...new Set(actor.grants.map(({ role }) => role))],
+            roles: [
+              ...new Set(actor.grants.map(({ role }) => role)),
+              ...(actor.isVisitor ? (["visitor"] as const) : []),
+            ],
             organizationName: organization?.name ?? "",
             sites: reachable,
+            visits: [...actor.visits],
           },
           pendingName: null,
+          endedAt: null,
         };
       });
     },
   );
 }
 
-async function hasGrant(user: Candidate): Promise<boolean> {
-  return inTransaction({ organizationId: user.organizationId, readOnly: true }, async () =>
-    Boolean(
-      await row(
-        "SELECT 1 AS one FROM role_grants WHERE user_id = :id AND revoked_at IS NULL LIMIT 1",
-        { id: user.id },
-      ),
-    ),
-  );
+interface Held {
+  name: string;
+  isGranted: boolean;
+  endedAt: Date | null;
 }
+
+/** Whether anything granted to a user counts, and when the last of what was for a time ended. */
+const leftBehind = (userId: string): Promise<Held | null> =>
+  row<Held>(
+    `SELECT u.name, EXISTS (SELECT 1 FROM role_grants g WHERE g.user_id = u.id AND ${inForce("g")}) AS "isGranted", ${lastEnd("u")} AS "endedAt"
+     FROM users u WHERE u.id = :userId`,
+    { userId },
+  );
+
+const heldBy = ({ id, organizationId }: Candidate): Promise<Held | null> =>
+  inTransaction({ organizationId, readOnly: true }, () => leftBehind(id));
 
 export const hashCode = (code: string): string =>
   createHash("sha256")

@@ -22,6 +22,8 @@ declare module "express-session" {
     isSigningIn?: boolean;
     /** Whom the provider vouched for, while no grant matches: such a person may only enter a worker's code. */
     pending?: { issuer: string; subject: string; email: string | null; name: string };
+    /** When what was granted to them for a time ended. */
+    endedAt?: string;
   }
 }
 

@@ -4,6 +4,7 @@ import { recordAudit } from "../lib/audit";
 import { checkSpan, daysFromTo } from "../lib/date-range";
 import { execute, row } from "../lib/db";
 import { issue, notFound, unprocessable } from "../lib/errors";
+import { inForce } from "../lib/grants";
 import type { Actor } from "../lib/policy";
 import type { Crew } from "../models/worker";
 
@@ -15,7 +16,7 @@ export async function addCrewSupervisor(
   const { userId, fromDate, toDate } = input;
   checkSpan(fromDate, toDate);
   const user = await row<{ isSupervisor: boolean }>(
-    `SELECT EXISTS (SELECT 1 FROM role_grants g WHERE g.user_id = u.id AND g.role = 'supervisor' AND g.revoked_at IS NULL
+    `SELECT EXISTS (SELECT 1 FROM role_grants g WHERE g.user_id = u.id AND g.role = 'supervisor' AND ${inForce("g")}
        AND (g.site_id IS NULL OR g.site_id = :siteId)) AS "isSupervisor"
      FROM users u WHERE u.id = :userId AND u.revoked_at IS NULL`,
     { userId, siteId: crew.siteId },

@@ -28,7 +28,8 @@ interface Standing {
     testedOn: string;
     parDb: number | null;
     needDb: number | null;
-    hasPassed: boolean;
+    /** Null: nothing had to come off any more. */
+    hasPassed: boolean | null;
   } | null;
   /** Another model that fits was handed out since, and this one is no longer worn. */
   isAnswered: boolean;
@@ -50,7 +51,7 @@ export async function followFits(
   // Two tests of one worker at once take their turns.
   await rows("SELECT 1 FROM workers WHERE id = :workerId FOR UPDATE", { workerId });
   for (const standing of await standings(workerId, modelId)) {
-    if (standing.test && !standing.test.hasPassed && !standing.isAnswered && !standing.isLaidDown)
+    if (standing.test?.hasPassed === false && !standing.isAnswered && !standing.isLaidDown)
       await openFailed(organizationId, workerId, standing, standing.test);
     else if (standing.open) await closeFailed(organizationId, standing, standing.open);
   }
@@ -66,7 +67,7 @@ function standings(workerId: string, modelId: string): Promise<Standing[]> {
   return rows<Standing>(
     `SELECT m.id AS "modelId", m.name AS protector, w.site_id AS "siteId", to_json(t) AS test, to_json(o) AS open, to_json(c) AS closed,
        EXISTS (SELECT 1 FROM protector_issues i JOIN fit_tests f ON f.id = i.fit_test_id AND NOT f.is_void
-               JOIN fit_test_revisions v ON v.id = f.current_revision_id AND v.has_passed
+               JOIN fit_test_revisions v ON v.id = f.current_revision_id AND (v.has_passed OR v.need_db <= 0)
                WHERE i.worker_id = w.id AND i.model_id <> m.id AND i.ended_on IS NULL AND i.issued_on >= t."testedOn")
        AND NOT ${isWorn("current_date")} AS "isAnswered",
        EXISTS (SELECT 1 FROM assignments a WHERE ${ofModel} AND upper(a.valid) > t."testedOn") AND NOT ${isWorn("current_date + 1")} AS "isLaidDown"
@@ -75,7 +76,7 @@ function standings(workerId: string, modelId: string): Promise<Standing[]> {
      LEFT JOIN LATERAL (
        SELECT f.id, f.tested_on AS "testedOn", v.par_db AS "parDb", v.need_db AS "needDb", v.has_passed AS "hasPassed"
        FROM fit_tests f JOIN fit_test_revisions v ON v.id = f.current_revision_id
-       WHERE f.worker_id = w.id AND f.model_id = m.id AND NOT f.is_void AND v.has_passed IS NOT NULL
+       WHERE f.worker_id = w.id AND f.model_id = m.id AND NOT f.is_void AND (v.has_passed IS NOT NULL OR (v.par_db IS NOT NULL AND v.need_db <= 0))
        ORDER BY f.tested_on DESC, f.created_at DESC LIMIT 1) t ON TRUE
      LEFT JOIN LATERAL (
        SELECT x.id, x.state, x.facts->>'fitTestId' AS "testId" FROM findings x
@@ -137,7 +138,7 @@ async function closeFailed(
   { test, isAnswered, isLaidDown }: Standing,
   { id, state, testId }: NonNullable<Standing["open"]>,
 ): Promise<void> {
-  const isWithdrawn = test === null || (test.hasPassed && test.id === testId);
+  const isWithdrawn = test === null || (test.hasPassed !== false && test.id === testId);
   if (isWithdrawn && state !== "new" && state !== "came-back") {
     const noted = await execute(
       `INSERT INTO finding_steps (organization_id, finding_id, kind, from_state, to_state, text)
@@ -150,7 +151,7 @@ async function closeFailed(
   }
   const reason = isWithdrawn
     ? "evidence-gone"
-    : test.hasPassed
+    : test.hasPassed !== false
       ? "refitted"
       : isAnswered || !isLaidDown
         ? "other-issued"

@@ -1,7 +1,8 @@
-import { createHash, randomBytes } from "node:crypto";
+import { createHash } from "node:crypto";
 import { recordAudit } from "../lib/audit";
 import { execute } from "../lib/db";
 import type { Actor } from "../lib/policy";
+import { newSecret } from "../lib/secret";
 
 /** What is kept of a secret. */
 export const secretHash = (secret: string): Buffer => createHash("sha256").update(secret).digest();
@@ -17,10 +18,7 @@ export function organizationOfSecret(secret: string): string | null {
 /** A private address for the actor's own calendar; one that there was before ends here. Gives its secret, once. */
 export async function makeCalendarFeed(actor: Actor): Promise<string> {
   await endFeed(actor);
-  const secret = Buffer.concat([
-    Buffer.from(actor.organizationId.replaceAll("-", ""), "hex"),
-    randomBytes(24),
-  ]).toString("base64url");
+  const secret = newSecret(actor.organizationId);
   await execute(
     "INSERT INTO calendar_feeds (organization_id, user_id, secret_hash) VALUES ($1, $2, $3)",
     [actor.organizationId, actor.userId, secretHash(secret)],

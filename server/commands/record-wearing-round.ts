@@ -1,12 +1,14 @@
 import { randomUUID } from "node:crypto";
-import type { WearingRoundInput } from "../../shared/schemas/wearing";
-import { recordAudit } from "../lib/audit";
+import { OWN_REPORT_CHANGE_DAYS, type WearingRoundInput } from "../../shared/schemas/wearing";
+import { recordAudit, recordAuditMany } from "../lib/audit";
 import { dateIssues, todayAt } from "../lib/calendar";
 import { execute, rows } from "../lib/db";
 import { issue, notFound, unprocessable } from "../lib/errors";
+import { groupBy } from "../lib/group-by";
 import { type Actor, visible } from "../lib/policy";
 import { WearingRound } from "../models/shop-floor";
 import { lookPolicy } from "../policies";
+import { changeableUntil } from "../queries/wearing-rounds";
 import { markDaysStale } from "./mark-days-stale";
 
 /**
@@ -19,7 +21,8 @@ export async function recordWearingRound(
   site: { id: string; timeZone: string },
   input: WearingRoundInput,
 ): Promise<string> {
-  await check(actor, site, input);
+  const before = input.source === "own-report" ? await reportsBefore(site, input) : [];
+  await check(actor, site, input, before);
   const { seenOn, source, note, looks } = input;
   const id = randomUUID();
   const { organizationId, userId: authorId } = actor;
@@ -44,6 +47,23 @@ export async function recordWearingRound(
     subjectId: id,
     values: { siteId: site.id, seenOn, source, looks },
   });
+  await recordAuditMany(
+    actor,
+    [...groupBy(before, ({ roundId }) => roundId)].map(([roundId, replaced]) => ({
+      action: "replace-own-report",
+      subjectKind: "wearing-round",
+      subjectId: roundId,
+      values: {
+        seenOn,
+        looks: replaced.map(({ workerId, taskId, wornCount, seenCount }) => ({
+          workerId,
+          taskId,
+          wornCount,
+          seenCount,
+        })),
+      },
+    })),
+  );
   await markDaysStale(organizationId, {
     workerIds: looks.map(({ workerId }) => workerId),
     fromDate: seenOn,
@@ -51,10 +71,37 @@ export async function recordWearingRound(
   return id;
 }
 
+interface ReportBefore {
+  roundId: string;
+  workerId: string;
+  taskId: string;
+  wornCount: number;
+  seenCount: number;
+  /** When the worker's first report of this task and day was given, by the site's clock. */
+  firstSaidOn: string;
+}
+
+/** The own reports that stand for what is said anew: one of each worker and task, which this one takes the place of. */
+const reportsBefore = (
+  { timeZone }: { timeZone: string },
+  { seenOn, looks }: WearingRoundInput,
+): Promise<ReportBefore[]> =>
+  rows<ReportBefore>(
+    `SELECT DISTINCT ON (l.worker_id, l.task_id) o.id AS "roundId", l.worker_id AS "workerId", l.task_id AS "taskId", l.worn_count AS "wornCount",
+       l.seen_count AS "seenCount",
+       (min(o.created_at) OVER (PARTITION BY l.worker_id, l.task_id) AT TIME ZONE :timeZone)::date::text AS "firstSaidOn"
+     FROM jsonb_to_recordset(CAST(:looks AS jsonb)) AS x("workerId" uuid, "taskId" uuid)
+     JOIN wearing_looks l ON l.worker_id = x."workerId" AND l.task_id = x."taskId" AND l.seen_on = CAST(:seenOn AS date)
+     JOIN wearing_rounds o ON o.id = l.round_id AND o.source = 'own-report' AND o.struck_reason IS NULL
+     ORDER BY l.worker_id, l.task_id, o.created_at DESC, o.id DESC`,
+    { looks: JSON.stringify(looks), seenOn, timeZone },
+  );
+
 async function check(
   actor: Actor,
   site: { id: string; timeZone: string },
   { seenOn, looks }: WearingRoundInput,
+  before: readonly ReportBefore[],
 ): Promise<void> {
   const today = todayAt(site.timeZone);
   const issues = dateIssues(["seenOn"], seenOn);
@@ -77,6 +124,12 @@ async function check(
     const pair = `${workerId} ${taskId}`;
     if (pairs.has(pair)) issues.push(issue(["looks", index, "taskId"], "look-twice"));
     pairs.add(pair);
+    const said = before.find((one) => one.workerId === workerId && one.taskId === taskId);
+    // What was said long ago is not said anew by the worker alone: the officer strikes it.
+    if (said && !actor.is("officer", "supervisor") && today > changeableUntil(said.firstSaidOn))
+      issues.push(
+        issue(["looks", index, "taskId"], "said-long-ago", { days: OWN_REPORT_CHANGE_DAYS }),
+      );
   });
   if (issues.length > 0) throw unprocessable(issues);
 }

@@ -3,6 +3,7 @@ import { isNotified, NEWS_FOR_DAYS } from "../../shared/findings/notified";
 import { addDays } from "../../shared/time/zone";
 import { todayAt } from "../lib/calendar";
 import { execute, row, rows } from "../lib/db";
+import { inForce } from "../lib/grants";
 import { addJob } from "../lib/jobs";
 import type { Actor } from "../lib/policy";
 import type { Recomputation } from "./recompute-days";
@@ -101,7 +102,7 @@ async function audiences(
        JOIN users u ON u.worker_id = d.worker_id AND u.revoked_at IS NULL AND u.email IS NOT NULL
      UNION
      SELECT d.worker_id, d.date::text, u.id, 'officer' FROM day d
-       JOIN role_grants g ON g.role = 'officer' AND g.revoked_at IS NULL AND (g.site_id IS NULL OR g.site_id = :siteId)
+       JOIN role_grants g ON g.role = 'officer' AND ${inForce("g")} AND (g.site_id IS NULL OR g.site_id = :siteId)
        JOIN users u ON u.id = g.user_id AND u.revoked_at IS NULL AND u.email IS NOT NULL AND (CAST(:authorId AS uuid) IS NULL OR u.id = :authorId)`,
     {
       days: JSON.stringify(news.map(({ workerId, date }) => ({ workerId, date }))),

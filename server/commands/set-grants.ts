@@ -33,7 +33,8 @@ export async function checkLink(workerId: string | null, grants: readonly Grant[
 
 /**
  * Puts one set of grants in the place of another: what is missing is revoked, what is new is added. Nobody grants or
- * revokes beyond the sites that they administer.
+ * revokes beyond the sites that they administer. Not of the set are
+ * grants with an end, which end by themselves, and those that follow a group.
  */
 export async function setGrants(actor: Actor, userId: string, wanted: readonly Grant[]) {
   const twice = wanted.findIndex(
@@ -41,7 +42,7 @@ export async function setGrants(actor: Actor, userId: string, wanted: readonly G
   );
   if (twice >= 0) throw unprocessable([issue(["grants", twice], "grant-twice")]);
   const held = await rows<Held>(
-    `SELECT id, role, site_id AS "siteId" FROM role_grants WHERE user_id = :userId AND revoked_at IS NULL FOR UPDATE`,
+    `SELECT id, role, site_id AS "siteId" FROM role_grants WHERE user_id = :userId AND revoked_at IS NULL AND ends_at IS NULL AND mapping_id IS NULL FOR UPDATE`,
     { userId },
   );
   const added = wanted.filter((grant) => !held.some((other) => key(other) === key(grant)));

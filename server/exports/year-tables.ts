@@ -3,7 +3,7 @@ import {
   assignmentPolicy,
   dayPolicy,
   findingPolicy,
-  fitPolicy,
+  fitTestPolicy,
   noticePolicy,
   protectorPolicy,
   runPolicy,
@@ -303,7 +303,7 @@ export function yearTables(actor: Actor, asked: YearRecords): YearTable[] {
         yesNo("has_passed", "v.has_passed", "Passed"),
       ],
       rest: `FROM fit_tests t JOIN fit_test_revisions v ON v.fit_test_id = t.id JOIN workers w ON w.id = t.worker_id JOIN protector_models m ON m.id = t.model_id
-        WHERE t.site_id = '${siteId}' AND ${inYear("t.tested_on")} AND ${visible(fitPolicy, actor, "t")} ORDER BY t.tested_on, t.id, v.number`,
+        WHERE t.site_id = '${siteId}' AND ${inYear("t.tested_on")} AND ${visible(fitTestPolicy, actor, "t")} ORDER BY t.tested_on, t.id, v.number`,
     },
     {
       name: "results",

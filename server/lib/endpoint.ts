@@ -1,7 +1,11 @@
 import { createHash } from "node:crypto";
 import type { NextFunction, Request, Response, Router } from "express";
 import type { z } from "zod";
+import type { ReadKind } from "../../shared/schemas/access";
 import { loadActor } from "../auth/actor";
+import { bearerOf, findToken } from "../auth/bearer";
+import { recordRead } from "../commands/record-read";
+import { opens } from "../policies/token-scopes";
 import { canonicalJson } from "./audit";
 import { execute, inTransaction, row } from "./db";
 import { AppError, forbidden, fromDatabase, notFound, unprocessable, withSent } from "./errors";
@@ -40,6 +44,14 @@ export interface RouteSpec<
    * facts. Small ones are read into memory, the others into the file store's staging, from where the handler keeps them.
    */
   upload?: UploadSpec;
+  /** The answer shows one worker's record: whoever reads it is kept in the log, in the same transaction. */
+  reads?: {
+    kind: ReadKind;
+    worker: (
+      call: { params: Output<P>; query: Output<Q> },
+      reply: R extends z.ZodType ? z.input<R> : undefined,
+    ) => string | null | undefined;
+  };
   /** The handler writes the answer itself, outside any transaction of the request. */
   streams?: boolean;
 }
@@ -212,6 +224,20 @@ async function handle(route: Route, request: Request, response: Response): Promi
   }
 }
 
+function signedIn({ session }: Request) {
+  if (!session?.userId || !session.organizationId) throw new AppError("signed-out", 401);
+  const { userId, organizationId, epoch = 0 } = session;
+  return { userId, organizationId, epoch };
+}
+
+/** Whose token it is; one of another scope opens nothing. */
+async function heldBy(token: string, { method, path }: Route, request: Request) {
+  const holder = await findToken(token, request);
+  if (!opens(holder.scopes, `${method.toUpperCase()} ${path}`))
+    throw new AppError("token-scope", 403);
+  return holder;
+}
+
 async function answer(
   route: Route,
   request: Request,
@@ -231,16 +257,20 @@ async function answer(
       request,
       response,
     };
-    return route.handler(call as never);
+    const reply = await route.handler(call as never);
+    const workerId = spec.reads?.worker(call as never, reply as never);
+    if (actor && spec.reads && workerId) await recordRead(actor, workerId, spec.reads.kind);
+    return reply;
   };
 
+  const token = bearerOf(request);
   if (spec.may === "public") {
+    if (token !== null) throw new AppError("token-scope", 403);
     send(response, spec.status ?? 200, await run(null));
     return;
   }
-  const session = request.session;
-  if (!session?.userId || !session.organizationId) throw new AppError("signed-out", 401);
-  const { userId, organizationId, epoch = 0 } = session;
+  const { userId, organizationId, epoch } =
+    token === null ? signedIn(request) : await heldBy(token, route, request);
   const load = async () => {
     const actor = await loadActor(userId, epoch);
     response.locals.language = actor.language;
@@ -260,7 +290,7 @@ async function answer(
     uploaded.staged = await readUpload(request, response, spec.upload);
   }
   const answered = await inTransaction(
-    { organizationId, readOnly: readMethods.has(route.method) },
+    { organizationId, readOnly: readMethods.has(route.method) && !spec.reads },
     async () => {
       const actor = await load();
       authorizeRoute(spec, actor);

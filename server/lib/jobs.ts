@@ -10,6 +10,7 @@ export interface JobPayloads {
   "read-history": { organizationId: string; importId: string };
   "analyse-recording": { organizationId: string; recordingId: string };
   "check-microphones": { organizationId: string; checkId: string };
+  "solve-timetable": { organizationId: string; timetableId: string };
 }
 export type JobName = keyof JobPayloads;
 

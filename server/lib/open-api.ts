@@ -1,5 +1,6 @@
 import { z } from "zod";
 import { Problem } from "../../shared/schemas/problem";
+import { scopesOpening } from "../policies/token-scopes";
 import { CSRF_COOKIE, CSRF_HEADER } from "./csrf";
 import type { Route } from "./endpoint";
 import type { UploadSpec } from "./upload";
@@ -94,9 +95,14 @@ export function buildOpenApi(routes: readonly Route[], url: string): Json {
         : {}),
       ...(spec.may === "public"
         ? { security: [] }
-        : isChange
-          ? { security: [{ session: [], csrf: [] }] }
-          : {}),
+        : {
+            security: [
+              isChange ? { session: [], csrf: [] } : { session: [] },
+              ...scopesOpening(`${method.toUpperCase()} ${path}`).map((scope) => ({
+                token: [scope],
+              })),
+            ],
+          }),
       responses: {
         [spec.reply ? status : "204"]: spec.reply
           ? {
@@ -125,6 +131,12 @@ export function buildOpenApi(routes: readonly Route[], url: string): Json {
     paths,
     components: {
       securitySchemes: {
+        token: {
+          type: "http",
+          scheme: "bearer",
+          description:
+            "Made under one's own account; opens what is named beside it, and nothing else.",
+        },
         session: { type: "apiKey", in: "cookie", name: "dinward.sid" },
         csrf: { type: "apiKey", in: "header", name: CSRF_HEADER, description: CSRF_DESCRIPTION },
       },

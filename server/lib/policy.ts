@@ -6,8 +6,26 @@ export type Role = (typeof ROLES)[number];
 
 const uuid = /^[0-9a-f-]{36}$/;
 
-/** Who asks: a sign-in with its grants. A grant without a site holds for all sites of the organization. */
+/** A role in force. Without a site it holds for all sites of the organization; with a year it is a visitor's. */
+export interface Grant {
+  readonly role: Role;
+  readonly siteId: string | null;
+  /** An auditor's grant may be about the records of one year at its site, and of nothing else. */
+  readonly year?: number | null;
+}
+
+const isWhole = ({ year }: Grant): boolean => (year ?? null) === null;
+
+/**
+ * Who asks: a sign-in with its grants. A visitor's grant is no role: it opens what a policy or a gate opens to visits, and
+ * nothing else.
+ */
 export class Actor {
+  /** Whole roles. */
+  readonly grants: readonly Grant[];
+  /** One year of one site each. */
+  readonly visits: readonly { readonly siteId: string; readonly year: number }[];
+
   constructor(
     readonly userId: string,
     readonly organizationId: string,
@@ -15,11 +33,17 @@ export class Actor {
     readonly email: string | null,
     readonly language: string,
     readonly workerId: string | null,
-    readonly grants: readonly { readonly role: Role; readonly siteId: string | null }[],
+    grants: readonly Grant[],
   ) {
     for (const id of [userId, organizationId, workerId, ...grants.map(({ siteId }) => siteId)]) {
       if (id !== null && !uuid.test(id)) throw new Error("an actor's ids are uuids");
     }
+    this.grants = grants.filter(isWhole);
+    this.visits = grants.flatMap(({ role, siteId, year }) =>
+      role === "auditor" && siteId !== null && Number.isInteger(year)
+        ? [{ siteId, year: Number(year) }]
+        : [],
+    );
   }
 
   is(...roles: Role[]): boolean {
@@ -38,6 +62,47 @@ export class Actor {
     if (held.length === 0) return false;
     if (held.some(({ siteId }) => siteId === null)) return "TRUE";
     return `${siteColumn} IN (${held.map(({ siteId }) => `'${siteId}'`).join(", ")})`;
+  }
+
+  get isVisitor(): boolean {
+    return this.visits.length > 0;
+  }
+
+  /** One of the roles at a site, or a visit there in that year. */
+  mayReadYear(siteId: string, year: number, ...roles: Role[]): boolean {
+    return (
+      this.isAt(siteId, ...roles) ||
+      this.visits.some((visit) => visit.siteId === siteId && visit.year === year)
+    );
+  }
+
+  /** SQL: the row belongs to a site and a year that this actor visits, by its first and last date. */
+  visiting(siteColumn: string, firstDate: string, lastDate = firstDate): string | false {
+    return (
+      this.isVisitor &&
+      this.visits
+        .map(
+          ({ siteId, year }) =>
+            `(${siteColumn} = '${siteId}' AND ${firstDate} < '${year + 1}-01-01' AND ${lastDate} >= '${year}-01-01')`,
+        )
+        .join(" OR ")
+    );
+  }
+
+  /** SQL: a worker has a day at a site and in a year that this actor visits. */
+  visitingWorker(workerColumn: string): string | false {
+    return (
+      this.isVisitor &&
+      `EXISTS (SELECT 1 FROM days v WHERE v.worker_id = ${workerColumn} AND (${this.visiting("v.site_id", "v.date")}))`
+    );
+  }
+
+  /** SQL: a site that this actor visits. */
+  visitingSite(siteColumn: string): string | false {
+    return (
+      this.isVisitor &&
+      `${siteColumn} IN (${this.visits.map(({ siteId }) => `'${siteId}'`).join(", ")})`
+    );
   }
 
   /** SQL: a worker is in one of this supervisor's crews on a date, by the memberships of that date. */

@@ -5,6 +5,7 @@ const WORKERS = {
   "history-worker": "histories/history-worker",
   "analyse-worker": "recordings/analyse-worker",
   "pair-worker": "recordings/pair-worker",
+  "timetable-worker": "timetables/timetable-worker",
 } as const;
 export type WorkerName = keyof typeof WORKERS;
 

@@ -21,6 +21,7 @@ export const texts = () => ({
 export const whole = () => ({ type: DataTypes.INTEGER, allowNull: false });
 
 export const numberOrNull = () => ({ type: DataTypes.DOUBLE, allowNull: true });
+export const wholeOrNull = () => ({ type: DataTypes.INTEGER, allowNull: true });
 export const flag = () => ({ type: DataTypes.BOOLEAN, allowNull: false, defaultValue: false });
 export const day = () => ({ type: DataTypes.DATEONLY, allowNull: false });
 export const dayOrNull = () => ({ type: DataTypes.DATEONLY, allowNull: true });

@@ -36,6 +36,10 @@ export class RoleGrant extends Model<
   declare role: Role;
   declare siteId: CreationOptional<string | null>;
   declare grantedBy: CreationOptional<string | null>;
+  /** A visitor's: the one year that it is about. */
+  declare year: CreationOptional<number | null>;
+  /** When it ends by itself. */
+  declare endsAt: CreationOptional<Date | null>;
   declare revokedAt: CreationOptional<Date | null>;
 }
 
@@ -66,6 +70,8 @@ export function defineUserModels(sequelize: Sequelize): void {
       role: column.text(),
       siteId: column.uuidOrNull(),
       grantedBy: column.uuidOrNull(),
+      year: column.wholeOrNull(),
+      endsAt: column.instantOrNull(),
       revokedAt: column.instantOrNull(),
     },
     { sequelize, tableName: "role_grants" },

@@ -17,6 +17,7 @@ const today = "current_date";
 export const sitePolicy = policy<{ id: string }>()({
   sees: (actor, s) => [
     actor.at(`${s}.id`, "officer", "supervisor", "worker", "auditor", "administrator"),
+    actor.visitingSite(`${s}.id`),
   ],
   can: {
     /** A new site is nobody's yet: only who administers all of them adds one. */
@@ -24,8 +25,21 @@ export const sitePolicy = policy<{ id: string }>()({
       actor.grants.some(({ role, siteId }) => role === "administrator" && siteId === null),
     change: (actor, { id }) => actor.isAt(id, "administrator"),
     changeRules: (actor, { id }) => actor.isAt(id, "officer"),
-    export: (actor, { id }) => actor.isAt(id, "officer", "auditor"),
   },
+});
+
+/** A site's year as a file, and what is missing in it. */
+export const yearPolicy = policy<AtSite & { year: number }>()({
+  sees: () => [],
+  can: {
+    export: (actor, { siteId, year }) => actor.mayReadYear(siteId, year, "officer", "auditor"),
+  },
+});
+
+/** Records drawn at random from a year: the auditor's own work, which is about the records and changes none. */
+export const drawPolicy = policy<AtSite>()({
+  sees: (actor, d) => [actor.at(`${d}.site_id`, "officer", "auditor")],
+  can: { mark: (actor, { siteId }) => actor.isAt(siteId, "auditor") },
 });
 
 /** Surveys and the register of changes: the officer's work, the auditor's to read. */
@@ -66,6 +80,7 @@ export const workerPolicy = policy<AtSite & { id: string }>()({
     actor.at(`${w}.site_id`, "officer", "auditor"),
     actor.supervises(`${w}.id`, today),
     actor.owns(`${w}.id`),
+    actor.visitingWorker(`${w}.id`),
   ],
   can: {
     change: officerAt,
@@ -93,24 +108,32 @@ export const dayPolicy = policy<OfWorker>()({
     actor.at(`${d}.site_id`, "officer", "auditor"),
     actor.supervises(`${d}.worker_id`, `${d}.date`),
     actor.owns(`${d}.worker_id`),
+    actor.visiting(`${d}.site_id`, `${d}.date`),
   ],
   can: { correct: officerAt },
 });
 
 export const shiftPolicy = dayPolicy;
 
+/** Results beside a finding: whoever sees the finding sees them, a visitor those of the year. */
+export const evidencePolicy = policy<OfWorker>()({
+  sees: (actor, r) => (actor.isVisitor ? dayPolicy.sees(actor, r) : ["TRUE"]),
+  can: {},
+});
+
 export const runPolicy = policy<AtSite>()({
   sees: (actor, r) => [
     actor.at(`${r}.site_id`, "officer", "auditor"),
     actor.supervises(`${r}.worker_id`, `${r}.date`),
     actor.owns(`${r}.worker_id`),
+    actor.visiting(`${r}.site_id`, `${r}.date`),
   ],
   can: { correct: officerAt },
 });
 
 /** The register of protectors belongs to the organization. */
 export const protectorPolicy = policy<object>()({
-  sees: (actor) => [actor.is("officer", "auditor", "supervisor") && "TRUE"],
+  sees: (actor) => [(actor.is("officer", "auditor", "supervisor") || actor.isVisitor) && "TRUE"],
   can: { change: (actor) => actor.is("officer") },
 });
 
@@ -119,6 +142,11 @@ export const assignmentPolicy = policy<AtSite>()({
     actor.at(`(SELECT w.site_id FROM workers w WHERE w.id = ${a}.worker_id)`, "officer", "auditor"),
     actor.supervises(`${a}.worker_id`, today),
     actor.owns(`${a}.worker_id`),
+    actor.visiting(
+      `(SELECT w.site_id FROM workers w WHERE w.id = ${a}.worker_id)`,
+      `lower(${a}.valid)`,
+      `coalesce(upper(${a}.valid), 'infinity')`,
+    ),
   ],
   can: { change: officerAt },
 });
@@ -133,9 +161,21 @@ export const fitPolicy = policy<AtSite>()({
   can: { change: officerAt, test: officerAt, issue: officerAt },
 });
 
+/** A fit test has its date: a visitor sees those of the year. */
+export const fitTestPolicy = policy<AtSite>()({
+  sees: (actor, f) => [
+    ...fitPolicy.sees(actor, f),
+    actor.visiting(`${f}.site_id`, `${f}.tested_on`),
+  ],
+  can: fitPolicy.can,
+});
+
 /** What was handed out: the worker says for themselves that they have it. */
 export const issuePolicy = policy<OfWorker>()({
-  sees: fitPolicy.sees,
+  sees: (actor, i) => [
+    ...fitPolicy.sees(actor, i),
+    actor.visiting(`${i}.site_id`, `${i}.issued_on`, `coalesce(${i}.ended_on, 'infinity')`),
+  ],
   can: {
     end: officerAt,
     acknowledge: (actor, { siteId, workerId }) =>
@@ -155,6 +195,15 @@ export const trainingPolicy = policy<AtSite>()({
   can: { change: officerAt },
 });
 
+/** A worker's trainings: whoever sees the worker sees them, a visitor those of the year. The alias is the session's. */
+export const ownTrainingPolicy = policy<AtSite>()({
+  sees: (actor, t) =>
+    actor.isVisitor
+      ? [...trainingPolicy.sees(actor, t), actor.visiting(`${t}.site_id`, `${t}.held_on`)]
+      : ["TRUE"],
+  can: {},
+});
+
 export const stockPolicy = policy<AtSite>()({
   sees: (actor, s) => [actor.at(`${s}.site_id`, "officer", "auditor")],
   can: { change: officerAt },
@@ -167,6 +216,12 @@ export const wearingPolicy = policy<AtSite>()({
     `${r}.author_id = '${actor.userId}'`,
   ],
   can: { strike: officerAt },
+});
+
+/** Whose own reports of wearing somebody reads: the office those of its sites, a worker the own. */
+export const ownReportPolicy = policy<AtSite>()({
+  sees: (actor, w) => [actor.at(`${w}.site_id`, "officer", "auditor"), actor.owns(`${w}.id`)],
+  can: {},
 });
 
 /** Who enters what was seen, and who says it of themselves. */
@@ -209,7 +264,7 @@ export const lookPolicy = (date: string) =>
 /** What was tried and kept: the officer's work, the auditor's to read. */
 export const planPolicy = policy<AtSite>()({
   sees: (actor, p) => [actor.at(`${p}.site_id`, "officer", "auditor")],
-  can: { keep: officerAt, putAside: officerAt },
+  can: { keep: officerAt, putAside: officerAt, step: officerAt },
 });
 
 export const signalPolicy = policy<AtSite>()({
@@ -224,6 +279,7 @@ export const findingPolicy = policy<AtSite>()({
     actor.supervises(`${f}.worker_id`, today),
     actor.supervises(`${f}.worker_id`, `${f}.last_date`),
     actor.owns(`${f}.worker_id`),
+    actor.visiting(`${f}.site_id`, `${f}.first_date`, `${f}.last_date`),
   ],
   can: {
     handle: officerAt,
@@ -238,6 +294,7 @@ export const findingFilePolicy = policy<AtSite>()({
     actor.at(`${f}.site_id`, "officer", "auditor"),
     actor.supervises(`${f}.worker_id`, today),
     actor.supervises(`${f}.worker_id`, `${f}.last_date`),
+    actor.visiting(`${f}.site_id`, `${f}.first_date`, `${f}.last_date`),
   ],
   can: {},
 });
@@ -246,13 +303,17 @@ export const noticePolicy = policy<AtSite>()({
   sees: (actor, n) => [
     actor.at(`${n}.site_id`, "officer", "auditor"),
     `${n}.recipient_id = '${actor.userId}'`,
+    actor.visiting(`${n}.site_id`, `${n}.created_at`),
   ],
   can: { handle: officerAt },
 });
 
 /** Letters with results: told to the worker, and signed before the officer. */
 export const letterPolicy = policy<AtSite>()({
-  sees: (actor, l) => [actor.at(`${l}.site_id`, "officer", "auditor")],
+  sees: (actor, l) => [
+    actor.at(`${l}.site_id`, "officer", "auditor"),
+    actor.visiting(`${l}.site_id`, `${l}.written_at`),
+  ],
   can: { acknowledge: officerAt },
 });
 
@@ -262,6 +323,45 @@ export const userPolicy = policy<{ id: string }>()({
   can: {
     change: (actor) => actor.is("administrator"),
     revoke: (actor, { id }) => actor.is("administrator") && actor.userId !== id,
+  },
+});
+
+/** Visitors' grants: who administers the site lets them in. */
+export const visitPolicy = policy<AtSite>()({
+  sees: (actor, g) => [actor.at(`${g}.site_id`, "administrator")],
+  can: { change: (actor, { siteId }) => actor.isAt(siteId, "administrator") },
+});
+
+/**
+ * Who read whose record. A worker reads who read the own one, files of a year with a day of theirs among it; an administrator
+ * learns by it who reads, and nothing of what stands there.
+ */
+export const readLogPolicy = policy<AtSite>()({
+  sees: (actor, r) => [
+    actor.at(`${r}.site_id`, "auditor", "administrator"),
+    actor.owns(`${r}.worker_id`),
+    actor.is("worker") &&
+      actor.workerId !== null &&
+      `${r}.worker_id IS NULL AND EXISTS (SELECT 1 FROM days v WHERE v.worker_id = '${actor.workerId}' AND v.site_id = ${r}.site_id
+        AND v.date >= make_date(${r}.year, 1, 1) AND v.date <= make_date(${r}.year, 12, 31))`,
+  ],
+  can: {},
+});
+
+/** Tokens for other systems: the person's own; an administrator can end anybody's. */
+export const tokenPolicy = policy<{ userId: string }>()({
+  sees: (actor, t) => [`${t}.user_id = '${actor.userId}'`, actor.is("administrator") && "TRUE"],
+  can: { end: (actor, { userId }) => actor.userId === userId || actor.is("administrator") },
+});
+
+/** Roles by groups: who administers the site, or for all of them whoever administers all. */
+export const mappingPolicy = policy<{ siteId: string | null }>()({
+  sees: (actor, m) => [actor.at(`${m}.site_id`, "administrator")],
+  can: {
+    change: (actor, { siteId }) =>
+      siteId === null
+        ? actor.grants.some((grant) => grant.role === "administrator" && grant.siteId === null)
+        : actor.isAt(siteId, "administrator"),
   },
 });
 
@@ -289,6 +389,8 @@ const tableOfSubject = {
   "warning-signal": "warning_signals",
   training: "training_sessions",
   plan: "plans",
+  timetable: "timetables",
+  draw: "record_draws",
 };
 
 /** The site an event is about, by its subject. */
@@ -305,7 +407,8 @@ export const auditPolicy = policy<object>()({
   sees: (actor, e) => [
     actor.at(siteOfEvent(e), "auditor"),
     actor.is("auditor") && `${e}.subject_kind = 'protector'`,
-    actor.is("administrator") && `${e}.subject_kind IN ('user', 'site')`,
+    actor.is("administrator") && `${e}.subject_kind IN ('user', 'site', 'group-mapping')`,
+    actor.visiting(siteOfEvent(e), `${e}.at`),
   ],
   can: {},
 });
@@ -315,16 +418,22 @@ export const may = {
   officer: (actor: Actor) => actor.is("officer"),
   /** The programme's description, without people's exposures. */
   readProgramme: (actor: Actor) => actor.is("officer", "auditor", "supervisor"),
-  readDays: (actor: Actor) => actor.is("officer", "auditor", "supervisor", "worker"),
+  readDays: (actor: Actor) =>
+    actor.is("officer", "auditor", "supervisor", "worker") || actor.isVisitor,
   readCrews: (actor: Actor) => actor.is("officer", "auditor", "supervisor"),
+  /** Lists of workers and of runs, each row by its own policy. */
+  listRecords: (actor: Actor) => actor.is("officer", "auditor", "supervisor") || actor.isVisitor,
   /** Surveys, outings and what hangs on an instrument. */
   readMeasuring: (actor: Actor) => actor.is("officer", "auditor"),
   followUp: (actor: Actor) => actor.is("officer", "supervisor"),
-  export: (actor: Actor) => actor.is("officer", "auditor"),
+  export: (actor: Actor) => actor.is("officer", "auditor") || actor.isVisitor,
+  drawRecords: (actor: Actor) => actor.is("auditor"),
+  readDraws: (actor: Actor) => actor.is("officer", "auditor"),
   reportProblem: (actor: Actor) => actor.is("worker"),
   administer: (actor: Actor) => actor.is("administrator"),
   issueCodes: (actor: Actor) => actor.is("officer", "administrator"),
   readWearing: (actor: Actor) => actor.is("officer", "supervisor", "auditor"),
+  readOwnReports: (actor: Actor) => actor.is("officer", "auditor", "worker"),
   /** Rounds through the shop: an officer, or a supervisor among the own crews. */
   observe: (actor: Actor) => actor.is("officer", "supervisor"),
   /** A round, or what a worker says of themselves. */
@@ -332,9 +441,13 @@ export const may = {
   /** Fits and issues as the office sees them. */
   readFitting: (actor: Actor) => actor.is("officer", "auditor"),
   acknowledge: (actor: Actor) => actor.is("officer", "worker"),
-  readLetters: (actor: Actor) => actor.is("officer", "auditor"),
-  readTrail: (actor: Actor) => actor.is("auditor", "administrator"),
+  readLetters: (actor: Actor) => actor.is("officer", "auditor") || actor.isVisitor,
+  readTrail: (actor: Actor) => actor.is("auditor", "administrator") || actor.isVisitor,
+  /** A visitor reads by hand. */
+  haveTokens: (actor: Actor) => actor.grants.length > 0,
+  readReads: (actor: Actor) => actor.is("auditor", "administrator", "worker"),
   /** Held against all rows of the organization: tables and keys, nobody's values. */
   checkTrail: (actor: Actor) => actor.is("auditor"),
-  readSites: (actor: Actor) => actor.is("officer", "auditor", "administrator", "supervisor"),
+  readSites: (actor: Actor) =>
+    actor.is("officer", "auditor", "administrator", "supervisor") || actor.isVisitor,
 };

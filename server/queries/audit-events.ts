@@ -14,6 +14,7 @@ import {
   fitPolicy,
   historyPolicy,
   letterPolicy,
+  mappingPolicy,
   noticePolicy,
   programmePolicy,
   protectorPolicy,
@@ -93,6 +94,12 @@ async function namesOf(actor: Actor, ids: readonly string[]): Promise<NamedThing
     programme("job", "jobs"),
     programme("instrument", "instruments"),
     { kind: "site", from: "sites t", name: "t.name", condition: visible(sitePolicy, actor, "t") },
+    {
+      kind: "group-mapping",
+      from: "group_mappings t",
+      name: "t.group_name",
+      condition: visible(mappingPolicy, actor, "t"),
+    },
     { kind: "crew", from: "crews t", name: "t.name", condition: visible(crewPolicy, actor, "t") },
     {
       kind: "worker",

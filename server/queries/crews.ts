@@ -1,5 +1,6 @@
 import type { CrewDetail, CrewView } from "../../shared/schemas/crew";
 import { rows } from "../lib/db";
+import { inForce } from "../lib/grants";
 import { type Actor, visible } from "../lib/policy";
 import { crewPolicy } from "../policies";
 
@@ -58,7 +59,7 @@ export async function listSupervisors(crewId: string): Promise<SupervisorRow[]> 
 export async function listSupervisorNames(siteId: string): Promise<{ id: string; name: string }[]> {
   return rows(
     `SELECT u.id, u.name FROM users u WHERE u.revoked_at IS NULL AND EXISTS (
-       SELECT 1 FROM role_grants g WHERE g.user_id = u.id AND g.role = 'supervisor' AND g.revoked_at IS NULL
+       SELECT 1 FROM role_grants g WHERE g.user_id = u.id AND g.role = 'supervisor' AND ${inForce("g")}
          AND (g.site_id IS NULL OR g.site_id = :siteId))
      ORDER BY u.name, u.id`,
     { siteId },

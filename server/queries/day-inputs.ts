@@ -10,6 +10,8 @@ import type {
   TaskLevel,
   TimedTask,
   Unaccounted,
+  WearingLooks,
+  WornFrom,
   Zone,
 } from "../../shared/acoustics/types";
 import { ruleSetInForce, ruleSetVersion } from "../../shared/rule-sets";
@@ -17,7 +19,13 @@ import type { ProtectorFacts } from "../../shared/schemas/evaluation";
 import { leftOutIn, type StoredLeftOut } from "../histories/left-out";
 import { rows } from "../lib/db";
 import { groupBy } from "../lib/group-by";
-import { activeCheckInForce, combinationInForce, fitInForce, wearingSeen } from "./own-attenuation";
+import {
+  activeCheckInForce,
+  combinationInForce,
+  fitInForce,
+  wearingSeen,
+  wearingSeenFrom,
+} from "./own-attenuation";
 
 export interface DayKey {
   workerId: string;
@@ -41,10 +49,20 @@ export interface DayRefs {
       use: UseRefs | null;
       /** Times seen wearing it, and seen at all, where the shift itself says nothing. */
       seen?: [worn: number, seen: number];
+      /** The same by source, with the latest round of each. Earlier results name none. */
+      seenFrom?: SeenFrom[];
     }[];
     runRevisionIds: string[];
   }[];
 }
+
+type SeenFrom = [
+  source: WearingLooks["source"],
+  roundId: string,
+  rounds: number,
+  worn: number,
+  seen: number,
+];
 
 /** What is worn, and what is known of it on this worker. What is not there is not named: earlier results name neither. */
 export interface UseRefs {
@@ -84,6 +102,7 @@ interface ShiftTaskRow {
   combinationId: string | null;
   audioDb: number | null;
   seen: [number, number] | null;
+  seenFrom: SeenFrom[] | null;
 }
 
 /**
@@ -116,7 +135,8 @@ export async function resolveDays(days: readonly DayKey[]): Promise<ResolvedDay[
        CASE WHEN u.outer_model_id IS NULL THEN ${fitInForce("w.worker_id", "u.inner_model_id", "u.size", "w.date")} END AS "fitId",
        CASE WHEN u.outer_model_id IS NULL THEN ${activeCheckInForce("w.worker_id", "u.inner_model_id", "u.size", "w.date")} END AS "checkId",
        CASE WHEN u.outer_model_id IS NOT NULL THEN ${combinationInForce("u.inner_model_id", "u.outer_model_id", "w.date")} END AS "combinationId",
-       CASE WHEN t.worn_pct IS NULL AND u.id IS NOT NULL THEN ${wearingSeen("w.worker_id", "t.task_id", "w.date")} END AS seen
+       CASE WHEN t.worn_pct IS NULL AND u.id IS NOT NULL THEN ${wearingSeen("w.worker_id", "t.task_id", "w.date")} END AS seen,
+       CASE WHEN t.worn_pct IS NULL AND u.id IS NOT NULL THEN ${wearingSeenFrom("w.worker_id", "t.task_id", "w.date")} END AS "seenFrom"
      FROM wanted w
      JOIN shifts s ON s.worker_id = w.worker_id AND s.date = w.date AND NOT s.is_void
      LEFT JOIN shift_tasks t ON t.shift_revision_id = s.current_revision_id
@@ -200,6 +220,7 @@ export async function resolveDays(days: readonly DayKey[]): Promise<ResolvedDay[
                   zone: row.zone,
                   use: refsOfUse(row),
                   ...(row.seen && { seen: row.seen }),
+                  ...(row.seenFrom && { seenFrom: row.seenFrom }),
                 },
               ],
         ),
@@ -356,9 +377,19 @@ export async function hydrateDays(
     uses.flatMap(({ inner, outer }) => [inner, outer]),
     `SELECT ${PROTECTOR_COLUMNS} FROM protector_model_revisions p JOIN protector_models m ON m.id = p.model_id WHERE p.id = ANY ($1::uuid[])`,
   );
-  const tests = await byId<{ id: string; parDb: number | null; activePassed: boolean | null }>(
+  const tests = await byId<{
+    id: string;
+    parDb: number | null;
+    activePassed: boolean | null;
+    testedOn: string;
+  }>(
     uses.flatMap(({ fit, check }) => [fit ?? null, check ?? null]),
-    `SELECT id, par_db AS "parDb", active_passed AS "activePassed" FROM fit_test_revisions WHERE id = ANY ($1::uuid[])`,
+    `SELECT v.id, v.par_db AS "parDb", v.active_passed AS "activePassed", f.tested_on::text AS "testedOn"
+     FROM fit_test_revisions v JOIN fit_tests f ON f.id = v.fit_test_id WHERE v.id = ANY ($1::uuid[])`,
+  );
+  const rounds = await byId<{ id: string; seenOn: string }>(
+    tasks.flatMap(({ seenFrom = [] }) => seenFrom.map(([, roundId]) => roundId)),
+    `SELECT id, seen_on::text AS "seenOn" FROM wearing_rounds WHERE id = ANY ($1::uuid[])`,
   );
   const combinations = await byId<{ id: string; bands: BandAttenuation }>(
     uses.map(({ combination }) => combination ?? null),
@@ -369,10 +400,11 @@ export async function hydrateDays(
     wearFromDb: number;
     creditsActivePart: boolean;
     usesUncertainty: boolean;
+    settingsFrom: string;
   }>(
     days.map(({ refs }) => refs.settingsId),
-    `SELECT id, wear_from_db AS "wearFromDb", credits_active_part AS "creditsActivePart", uses_uncertainty AS "usesUncertainty"
-     FROM site_settings WHERE id = ANY ($1::uuid[])`,
+    `SELECT id, wear_from_db AS "wearFromDb", credits_active_part AS "creditsActivePart", uses_uncertainty AS "usesUncertainty",
+       effective_from::text AS "settingsFrom" FROM site_settings WHERE id = ANY ($1::uuid[])`,
   );
   const runIds = [...new Set(shifts.flatMap(({ runRevisionIds }) => runRevisionIds))];
   const readings =
@@ -395,11 +427,27 @@ export async function hydrateDays(
     zone,
     use,
     seen,
+    seenFrom,
   }: DayRefs["shifts"][number]["tasks"][number]): TimedTask => {
     const task = timed.get(id)!;
     const level = levelId === null ? null : levels.get(levelId);
     const inner = use?.inner ? protectors.get(use.inner) : undefined;
     const outer = use?.outer ? protectors.get(use.outer) : undefined;
+    const check = tests.get(use?.check ?? "");
+    const wornFrom: WornFrom | undefined =
+      task.wornPct !== null
+        ? { how: "stated" }
+        : seenFrom && {
+            how: "looks",
+            looks: seenFrom.map(([source, roundId, roundCount, wornCount, seenCount]) => ({
+              source,
+              roundId,
+              lastOn: rounds.get(roundId)!.seenOn,
+              roundCount,
+              wornCount,
+              seenCount,
+            })),
+          };
     return {
       id,
       taskId: task.taskId,
@@ -415,12 +463,14 @@ export async function hydrateDays(
               outer: outer ? toProtector(outer) : null,
               combinationBands: combinations.get(use.combination ?? "")?.bands ?? null,
               ownFitDb: tests.get(use.fit ?? "")?.parDb ?? null,
-              activeCheckPassed: tests.get(use.check ?? "")?.activePassed ?? false,
+              activeCheckPassed: check?.activePassed ?? false,
+              ...(check && { activeCheckedOn: check.testedOn }),
               audioDb: use.audioDb ?? null,
             }
           : null,
       wornPct: task.wornPct ?? (seen ? (100 * seen[0]) / seen[1] : null),
       wornIsShiftWide: task.wornIsShiftWide,
+      ...(wornFrom && { wornFrom }),
     };
   };
   return days.map(({ workerId, date, refs }) => {
@@ -433,6 +483,7 @@ export async function hydrateDays(
       site: {
         wearFromDb: site.wearFromDb,
         creditsActivePart: site.creditsActivePart,
+        settingsFrom: site.settingsFrom,
         usesUncertainty: site.usesUncertainty,
       },
       shifts: refs.shifts.map(({ revisionId, tasks: shiftTasks, runRevisionIds }): ShiftInput => {

@@ -11,7 +11,7 @@ import { decodeCursor, pageFrom } from "../lib/cursor";
 import { rows } from "../lib/db";
 import { type Actor, abilities, visible } from "../lib/policy";
 import type { Finding } from "../models/finding";
-import { findingPolicy } from "../policies";
+import { evidencePolicy, findingPolicy } from "../policies";
 import {
   DAY_FIGURES_COLUMNS,
   type DayFiguresRow,
@@ -34,13 +34,15 @@ export const RULES_UNTIL = `(SELECT coalesce(
        ORDER BY s.effective_from DESC, s.number DESC LIMIT 1) now
     WHERE now.governing_rule_set <> rested.key)`;
 
-const SELECT_FINDINGS = `SELECT f.id, f.kind, f.state, f.criterion, f.use_key AS "useKey", f.facts, f.first_date::text AS "firstDate", f.last_date::text AS "lastDate",
+const selectFindings = (
+  actor: Actor,
+) => `SELECT f.id, f.kind, f.state, f.criterion, f.use_key AS "useKey", f.facts, f.first_date::text AS "firstDate", f.last_date::text AS "lastDate",
     f.days_count AS "daysCount",
     CASE WHEN f.job_id IS NULL THEN 1 ELSE (SELECT count(DISTINCT e.worker_id)::int FROM finding_evidence e WHERE e.finding_id = f.id) END AS "workersCount", f.due_on::text AS "dueOn", ${RULES_UNTIL} AS "rulesUntil", f.site_id AS "siteId", f.revision, w.id AS "workerId", w.name AS "workerName",
     w.employee_number AS "employeeNumber", coalesce(j.name, i.name) AS "subjectName",
     (SELECT c.name FROM crew_memberships m JOIN crews c ON c.id = m.crew_id WHERE m.worker_id = f.worker_id AND m.valid @> f.last_date LIMIT 1) AS "crewName",
     o.name AS "ownerName", (SELECT json_build_object('name', p.name, 'on', f.escalated_on) FROM escalations x JOIN users p ON p.id = x.recipient_id WHERE x.id = f.escalation_id) AS "wentUp",
-    (SELECT to_jsonb(x) FROM (SELECT ${DAY_FIGURES_COLUMNS("r")} FROM day_results r WHERE r.id = f.last_result_id) x) AS figures
+    (SELECT to_jsonb(x) FROM (SELECT ${DAY_FIGURES_COLUMNS("r")} FROM day_results r WHERE r.id = f.last_result_id AND ${visible(evidencePolicy, actor, "r")}) x) AS figures
   FROM findings f LEFT JOIN workers w ON w.id = f.worker_id LEFT JOIN jobs j ON j.id = f.job_id
   LEFT JOIN instruments i ON i.id = f.instrument_id LEFT JOIN users o ON o.id = f.owner_id`;
 
@@ -81,7 +83,7 @@ export async function listFindings(
       "(coalesce(f.due_on, 'infinity'), f.id) > (coalesce(CAST(:dueOn AS date), 'infinity'), CAST(:id AS uuid))",
     );
   const found = await rows<Found>(
-    `${SELECT_FINDINGS} WHERE ${conditions.join(" AND ")} ORDER BY coalesce(f.due_on, 'infinity'), f.id LIMIT :limit`,
+    `${selectFindings(actor)} WHERE ${conditions.join(" AND ")} ORDER BY coalesce(f.due_on, 'infinity'), f.id LIMIT :limit`,
     {
       siteId: filter.siteId,
       workerId: filter.workerId,
@@ -102,7 +104,9 @@ export async function findingView(
   actor: Actor,
   finding: Finding,
 ): Promise<z.input<typeof FindingView>> {
-  const [found] = await rows<Found>(`${SELECT_FINDINGS} WHERE f.id = :id`, { id: finding.id });
+  const [found] = await rows<Found>(`${selectFindings(actor)} WHERE f.id = :id`, {
+    id: finding.id,
+  });
   const steps = await rows<{
     id: string;
     kind: FindingView["steps"][number]["kind"];
@@ -119,7 +123,7 @@ export async function findingView(
   const evidence = await rows<DayFiguresRow & { ofWorkerId: string; ofWorkerName: string }>(
     `SELECT ${DAY_FIGURES_COLUMNS("r")}, w.id AS "ofWorkerId", w.name AS "ofWorkerName"
      FROM finding_evidence e JOIN day_results r ON r.id = e.result_id JOIN workers w ON w.id = e.worker_id
-     WHERE e.finding_id = :id ORDER BY e.date DESC, w.name, w.id LIMIT 60`,
+     WHERE e.finding_id = :id AND ${visible(evidencePolicy, actor, "r")} ORDER BY e.date DESC, w.name, w.id LIMIT 60`,
     { id: finding.id },
   );
   const told = await rows<{

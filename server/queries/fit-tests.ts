@@ -3,7 +3,7 @@ import type { FitTestFilter, FitTestView } from "../../shared/schemas/fit";
 import { decodeCursor, pageFrom } from "../lib/cursor";
 import { rows } from "../lib/db";
 import { type Actor, abilities, visible } from "../lib/policy";
-import { fitPolicy } from "../policies";
+import { fitTestPolicy } from "../policies";
 import { dueAfterTest } from "./fit-dues";
 
 type Found = Omit<FitTestView, "can"> & { createdAt: string };
@@ -28,7 +28,7 @@ const SELECT_FIT_TESTS = `SELECT f.id, f.revision, f.site_id AS "siteId", f.work
 
 const present = (actor: Actor, { createdAt: _, ...test }: Found): FitTestView => ({
   ...test,
-  can: { change: abilities(fitPolicy, actor, test).change && !test.isVoid },
+  can: { change: abilities(fitTestPolicy, actor, test).change && !test.isVoid },
 });
 
 /** Fit tests, the latest first; struck ones stand among them. */
@@ -38,7 +38,7 @@ export async function listFitTests(
 ): Promise<{ rows: FitTestView[]; next: string | null }> {
   const before = decodeCursor(filter.cursor, 3);
   const conditions = [
-    visible(fitPolicy, actor, "f"),
+    visible(fitTestPolicy, actor, "f"),
     filter.siteId && "f.site_id = :siteId",
     filter.workerId && "f.worker_id = :workerId",
     filter.modelId && "f.model_id = :modelId",
@@ -67,7 +67,7 @@ export async function listFitTests(
 
 export async function fitTestsById(actor: Actor, id: string): Promise<FitTestView[]> {
   const found = await rows<Found>(
-    `${SELECT_FIT_TESTS} WHERE f.id = :id AND ${visible(fitPolicy, actor, "f")}`,
+    `${SELECT_FIT_TESTS} WHERE f.id = :id AND ${visible(fitTestPolicy, actor, "f")}`,
     { id },
   );
   return found.map((test) => present(actor, test));

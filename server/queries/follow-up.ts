@@ -1,5 +1,6 @@
 import type { EscalationView, FollowUpView, MeasureView } from "../../shared/schemas/follow-up";
 import { row, rows } from "../lib/db";
+import { inForce } from "../lib/grants";
 import { type Actor, visible } from "../lib/policy";
 import type { Finding } from "../models/finding";
 import { dayPolicy, findingFilePolicy, findingPolicy, runPolicy, sitePolicy } from "../policies";
@@ -34,7 +35,7 @@ export async function findMeasure(findingId: string, id: string): Promise<Measur
 export const listOwners = (siteId: string) =>
   rows<{ id: string; name: string }>(
     `SELECT u.id, u.name FROM users u WHERE u.revoked_at IS NULL AND EXISTS (SELECT 1 FROM role_grants g
-       WHERE g.user_id = u.id AND g.role IN ('officer', 'supervisor') AND g.revoked_at IS NULL AND (g.site_id IS NULL OR g.site_id = :siteId))
+       WHERE g.user_id = u.id AND g.role IN ('officer', 'supervisor') AND ${inForce("g")} AND (g.site_id IS NULL OR g.site_id = :siteId))
      ORDER BY u.name, u.id`,
     { siteId },
   );
@@ -171,7 +172,7 @@ export async function followUpOf(actor: Actor, finding: Finding): Promise<Follow
 
 /** Who reads a site's findings and has an address for mail. */
 const PEOPLE_OF_SITE = `SELECT u.id, u.name FROM users u WHERE u.revoked_at IS NULL AND u.email IS NOT NULL AND u.organization_id = s.organization_id
-  AND EXISTS (SELECT 1 FROM role_grants g WHERE g.user_id = u.id AND g.role IN ('officer', 'auditor') AND g.revoked_at IS NULL
+  AND EXISTS (SELECT 1 FROM role_grants g WHERE g.user_id = u.id AND g.role IN ('officer', 'auditor') AND ${inForce("g")} AND g.year IS NULL
     AND (g.site_id IS NULL OR g.site_id = s.id)) ORDER BY u.name, u.id`;
 
 /** Whom overdue findings go up to, site by site. */

@@ -3,7 +3,7 @@ import { mainLimit, RULE_SETS } from "../../shared/rule-sets";
 import type { GapKind, GapNames, GapsView } from "../../shared/schemas/waiting";
 import { rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
-import { dayPolicy, findingPolicy } from "../policies";
+import { dayPolicy, findingPolicy, letterPolicy } from "../policies";
 import { TRAINING_DUTIES } from "./training";
 
 type Kind = z.infer<typeof GapKind>;
@@ -42,6 +42,10 @@ const notices = (condition: string) => `
  * - not-measured: workers over 80 dB without protection on a day known only from a task's level or an estimate, of whom
  *   no run of that year is recorded; with their job and the last such day.
  * - no-protector: workers with an open finding that a protector is required and none assigned, on a day of that year.
+ * - not-fitted: workers over 80 dB with a protector, at a site that asks for fit tests, and no test of theirs within the
+ *   site's interval before the last such day; with their job and that day.
+ * - letter-late: letters of results about days of that year that reached their worker after the rule's days, or have not
+ *   yet and should have; with the day on which each was due.
  * - not-trained: workers over what their rules' duty to train hangs from, and no training within its interval before the
  *   last such day; with that day.
  * - notice-late: worker and day of which somebody was told more than a day after the entry.
@@ -62,6 +66,21 @@ const gapQueries: Record<Kind, (actor: Actor) => string> = {
     JOIN day_results r ON r.id = e.result_id LEFT JOIN tasks k ON k.id = r.deciding_task_id
     WHERE f.kind = 'no-protector' AND f.state <> 'closed' AND ${visible(findingPolicy, actor, "f")}
     GROUP BY f.worker_id`,
+  "not-fitted": () => `
+    SELECT d.worker_id AS id, max(j.name) AS note, max(d.date) AS date
+    FROM year_days d JOIN day_results r ON r.id = d.result_id AND r.has_protector = 'yes' JOIN sites s ON s.id = :siteId
+    JOIN workers w ON w.id = d.worker_id LEFT JOIN jobs j ON j.id = w.job_id
+    WHERE d.outside_db > ${IN_NOISE_DB} AND (s.fit_every_months IS NOT NULL OR s.fit_after_fail_days IS NOT NULL)
+    GROUP BY d.worker_id, s.fit_every_months HAVING NOT EXISTS (
+      SELECT 1 FROM fit_tests f WHERE f.worker_id = d.worker_id AND NOT f.is_void AND f.tested_on <= make_date(:year, 12, 31)
+        AND f.tested_on > coalesce(max(d.date) - make_interval(months => s.fit_every_months), '-infinity'))`,
+  "letter-late": (actor) => `
+    SELECT l.worker_id AS id, NULL AS note, l.due_on AS date
+    FROM result_letters l JOIN sites s ON s.id = l.site_id LEFT JOIN notices n ON n.id = l.notice_id LEFT JOIN notice_acknowledgements a ON a.letter_id = l.id
+    WHERE EXISTS (SELECT 1 FROM result_letter_days x JOIN year_days d ON d.worker_id = x.worker_id AND d.date = x.date WHERE x.letter_id = l.id)
+      AND n.state IS DISTINCT FROM 'withdrawn' AND NOT EXISTS (SELECT 1 FROM result_letters later WHERE later.replaces_id = l.id)
+      AND coalesce(least((n.sent_at AT TIME ZONE s.time_zone)::date, a.signed_on, CASE WHEN a.way = 'link' THEN (a.recorded_at AT TIME ZONE s.time_zone)::date END),
+        (now() AT TIME ZONE s.time_zone)::date) > l.due_on AND ${visible(letterPolicy, actor, "l")}`,
   "not-trained": () => `
     SELECT d.worker_id AS id, NULL AS note, max(d.date) AS date FROM year_days d JOIN day_results r ON r.id = d.result_id
     JOIN jsonb_to_recordset(CAST(:duties AS jsonb)) AS k("ruleSetKey" text, over jsonpath, "withinDays" int, "everyMonths" int)
@@ -122,7 +141,7 @@ export async function yearGaps(
   const years = await rows<{ year: number }>(
     `WITH span AS (SELECT min(d.date) AS first, max(d.date) AS last FROM days d WHERE d.site_id = :siteId)
      SELECT y AS year FROM span, generate_series(extract(year FROM span.last)::int, extract(year FROM span.first)::int, -1) y
-     WHERE EXISTS (SELECT 1 FROM days d WHERE d.site_id = :siteId AND d.date BETWEEN make_date(y, 1, 1) AND make_date(y, 12, 31))`,
+     WHERE EXISTS (SELECT 1 FROM days d WHERE d.site_id = :siteId AND d.date BETWEEN make_date(y, 1, 1) AND make_date(y, 12, 31) AND ${visible(dayPolicy, actor, "d")})`,
     values,
   );
   return { ...found!, years: years.map(({ year: one }) => one) };

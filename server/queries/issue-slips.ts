@@ -34,6 +34,7 @@ interface DeviceRow {
   kind: string;
   useName: string | null;
   fit: { testedOn: string; hasPassed: boolean | null } | null;
+  issuedOn: string | null;
   cushionsDueOn: string | null;
   tipsDueOn: string | null;
 }
@@ -173,6 +174,8 @@ const devicesOn = (ids: string, date: string): Promise<DeviceRow[]> =>
     `SELECT a.id AS "assignmentId", a.worker_id AS "workerId", i.name AS "innerName", o.name AS "outerName", i.kind, a.size, coalesce(t.name, r.name) AS "useName",
        (SELECT json_build_object('testedOn', f.tested_on::text, 'hasPassed', v.has_passed) FROM fit_test_revisions v JOIN fit_tests f ON f.id = v.fit_test_id
         WHERE a.outer_model_id IS NULL AND v.id = ${fitInForce("a.worker_id", "a.inner_model_id", "a.size", "CAST(:date AS date)")}) AS fit,
+       (SELECT CASE WHEN count(DISTINCT e.model_id) = 1 + (a.outer_model_id IS NOT NULL)::int THEN max(e.issued_on)::text END FROM protector_issues e
+        WHERE e.worker_id = a.worker_id AND e.model_id IN (a.inner_model_id, a.outer_model_id) AND e.ended_on IS NULL) AS "issuedOn",
        (x.issued_on + (d.data->>'cushionsEveryDays')::int)::text AS "cushionsDueOn", (x.issued_on + (d.data->>'tipsEveryDays')::int)::text AS "tipsDueOn"
      FROM assignments a JOIN protector_models i ON i.id = a.inner_model_id LEFT JOIN protector_models o ON o.id = a.outer_model_id
      LEFT JOIN tasks t ON t.id = a.task_id LEFT JOIN areas r ON r.id = a.area_id

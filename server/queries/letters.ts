@@ -25,13 +25,13 @@ type Found = Omit<
 };
 
 /** The notice went; whether it arrived nobody knows where it is possibly sent. */
-const STATE = `CASE WHEN later.id IS NOT NULL AND a.id IS NULL THEN 'replaced' WHEN a.id IS NOT NULL THEN 'acknowledged'
+export const LETTER_STATE = `CASE WHEN later.id IS NOT NULL AND a.id IS NULL THEN 'replaced' WHEN a.id IS NOT NULL THEN 'acknowledged'
   WHEN l.notice_id IS NULL THEN 'to-print' WHEN n.state = 'withdrawn' THEN 'withdrawn' WHEN n.state = 'failed' THEN 'failed'
   WHEN n.state IN ('sent', 'possibly-sent') THEN 'sent' ELSE 'waiting' END`;
 
-const LETTERS = `SELECT l.id, l.site_id AS "siteId", l.worker_id AS "workerId", w.name AS "workerName", w.employee_number AS "employeeNumber", ${STATE} AS state,
+const LETTERS = `SELECT l.id, l.site_id AS "siteId", l.worker_id AS "workerId", w.name AS "workerName", w.employee_number AS "employeeNumber", ${LETTER_STATE} AS state,
     n.state AS "noticeState", l.due_on::text AS "dueOn", l.written_at AS "writtenAt", n.sent_at AS "sentAt",
-    (${STATE} IN ('to-print', 'waiting', 'failed') AND l.due_on < (now() AT TIME ZONE s.time_zone)::date) AS "isLate",
+    (${LETTER_STATE} IN ('to-print', 'waiting', 'failed') AND l.due_on < (now() AT TIME ZONE s.time_zone)::date) AS "isLate",
     (SELECT json_agg(json_build_object('date', x.date, 'levelDb', x.level_db, 'isOver', x.is_over) ORDER BY x.date) FROM result_letter_days x WHERE x.letter_id = l.id) AS days,
     a.way, a.recorded_at AS "acknowledgedAt", a.signed_on::text AS "signedOn", u.name AS "recordedBy",
     o.name AS "organizationName", s.name AS "siteName", l.language, l.subject, l.body_text AS text, l.replaces_id AS "replacesId", later.id AS "replacedById", l.rule_set AS "ruleSetKey", l.rule_set_version AS "ruleSetVersion"
@@ -40,7 +40,7 @@ const LETTERS = `SELECT l.id, l.site_id AS "siteId", l.worker_id AS "workerId", 
   LEFT JOIN LATERAL (SELECT r.id FROM result_letters r WHERE r.replaces_id = l.id ORDER BY r.written_at DESC LIMIT 1) later ON TRUE`;
 
 /** What is neither acknowledged nor overtaken. */
-const OPEN = `${STATE} IN ('to-print', 'waiting', 'sent', 'failed')`;
+const OPEN = `${LETTER_STATE} IN ('to-print', 'waiting', 'sent', 'failed')`;
 
 function present(
   actor: Actor,

@@ -29,8 +29,24 @@ export const combinationInForce = (inner: string, outer: string, date: string): 
 /** Looks older than this say little of today. Common practice, no source. */
 const LOOKS_COUNT_FOR = "1 year";
 
+/** Of a look of a round: an own report of the same worker, task and day came later and stands, so that this one says nothing. */
+export const lookReplaced = (look: string, round: string): string =>
+  `(${round}.source = 'own-report' AND EXISTS (SELECT 1 FROM wearing_looks n JOIN wearing_rounds p ON p.id = n.round_id
+    WHERE n.worker_id = ${look}.worker_id AND n.task_id = ${look}.task_id AND n.seen_on = ${look}.seen_on AND p.source = 'own-report'
+      AND p.struck_reason IS NULL AND (p.created_at, p.id) > (${round}.created_at, ${round}.id)))`;
+
+/** Looks at a worker in a task that count on a date. */
+const looksOf = (worker: string, task: string, date: string): string =>
+  `wearing_looks l JOIN wearing_rounds o ON o.id = l.round_id
+    WHERE l.worker_id = ${worker} AND l.task_id = ${task} AND l.seen_on <= ${date} AND l.seen_on > ${date} - interval '${LOOKS_COUNT_FOR}'
+      AND o.struck_reason IS NULL AND NOT ${lookReplaced("l", "o")}`;
+
 /** How often a worker was seen wearing it in a task and how often seen at all, as a JSON pair; null: never looked. */
 export const wearingSeen = (worker: string, task: string, date: string): string =>
-  `(SELECT json_build_array(sum(l.worn_count), sum(l.seen_count)) FROM wearing_looks l JOIN wearing_rounds o ON o.id = l.round_id
-    WHERE l.worker_id = ${worker} AND l.task_id = ${task} AND l.seen_on <= ${date} AND l.seen_on > ${date} - interval '${LOOKS_COUNT_FOR}'
-      AND o.struck_reason IS NULL HAVING count(*) > 0)`;
+  `(SELECT json_build_array(sum(l.worn_count), sum(l.seen_count)) FROM ${looksOf(worker, task, date)} HAVING count(*) > 0)`;
+
+/** Behind `wearingSeen`, by source: [source, latest round's id, rounds, worn, seen], as a JSON list; null: never looked. */
+export const wearingSeenFrom = (worker: string, task: string, date: string): string =>
+  `(SELECT json_agg(json_build_array(g.source, g.last, g.rounds, g.worn, g.seen) ORDER BY g.source DESC) FROM (
+     SELECT o.source, (array_agg(o.id ORDER BY o.seen_on DESC, o.created_at DESC, o.id))[1] AS last, count(*) AS rounds, sum(l.worn_count) AS worn, sum(l.seen_count) AS seen
+     FROM ${looksOf(worker, task, date)} GROUP BY o.source) g)`;

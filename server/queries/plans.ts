@@ -3,16 +3,18 @@ import { countVerdicts } from "../../shared/planning/try-changes";
 import type {
   PlanChange,
   PlanFilter,
-  PlanOutcome,
   PlanPage,
   PlanRow,
   PlanView,
 } from "../../shared/schemas/plan";
+import type { KeptTimetable } from "../../shared/schemas/timetable";
+import type { PlanOutcome } from "../../shared/schemas/tried";
 import { decodeCursor, pageFrom } from "../lib/cursor";
 import { rows } from "../lib/db";
 import { only } from "../lib/only";
 import { type Actor, abilities, visible } from "../lib/policy";
 import { dayPolicy, planPolicy } from "../policies";
+import { findingsToMend, stepOwners, stepsOf } from "./plan-steps";
 
 interface Found extends Omit<PlanRow, "scope" | "before" | "after" | "can" | "keptAt"> {
   keptAt: Date;
@@ -24,17 +26,20 @@ interface Found extends Omit<PlanRow, "scope" | "before" | "after" | "can" | "ke
   baseDate: string;
   methodVersion: number;
   changes: PlanChange[];
+  timetable: KeptTimetable | null;
   outcome: PlanOutcome;
   sortedAt: string;
 }
 
-const SELECT = `SELECT p.id, p.name, p.site_id AS "siteId", s.name AS "siteName", p.scope_kind AS "scopeKind", p.scope_id AS "scopeId",
+const SELECT = `SELECT p.id, p.name, p.kind, p.site_id AS "siteId", s.name AS "siteName", p.scope_kind AS "scopeKind", p.scope_id AS "scopeId",
     CASE p.scope_kind WHEN 'worker' THEN (SELECT name FROM workers WHERE id = p.scope_id) WHEN 'job' THEN (SELECT name FROM jobs WHERE id = p.scope_id)
-      ELSE (SELECT name FROM areas WHERE id = p.scope_id) END AS "scopeName",
+      WHEN 'crew' THEN (SELECT name FROM crews WHERE id = p.scope_id) ELSE (SELECT name FROM areas WHERE id = p.scope_id) END AS "scopeName",
     p.goal, p.governing_rule_set AS "ruleSetKey", p.governing_version AS "ruleSetVersion", p.method_version AS "methodVersion",
     p.kept_at AS "keptAt", p.kept_at::text AS "sortedAt", u.name AS "authorName", p.put_aside_reason AS "putAsideReason",
-    jsonb_array_length(p.changes) AS "changesCount", p.base_date::text AS "baseDate", p.changes, p.outcome, p.revision
-  FROM plans p JOIN sites s ON s.id = p.site_id LEFT JOIN users u ON u.id = p.author_id`;
+    jsonb_array_length(p.changes) AS "changesCount", p.base_date::text AS "baseDate", p.changes, p.timetable, p.outcome, p.revision,
+    k.open AS "stepsOpen", k.count AS "stepsCount"
+  FROM plans p JOIN sites s ON s.id = p.site_id LEFT JOIN users u ON u.id = p.author_id
+    CROSS JOIN LATERAL (SELECT count(*)::int AS count, count(*) FILTER (WHERE x.state = 'open')::int AS open FROM plan_steps x WHERE x.plan_id = p.id) k`;
 
 /** Kept plans, the latest first. */
 export async function listPlans(
@@ -71,6 +76,7 @@ function toRow(actor: Actor, one: Found): z.input<typeof PlanRow> {
   return {
     id: facts.id,
     name: facts.name,
+    kind: facts.kind,
     scope: { scopeKind, scopeId, name: scopeName ?? "", siteId, siteName },
     goal: facts.goal,
     ruleSetKey: facts.ruleSetKey,
@@ -79,6 +85,8 @@ function toRow(actor: Actor, one: Found): z.input<typeof PlanRow> {
     authorName: facts.authorName,
     putAsideReason: facts.putAsideReason,
     changesCount: facts.changesCount,
+    stepsOpen: facts.stepsOpen,
+    stepsCount: facts.stepsCount,
     before: count("before"),
     after: count("after"),
     worstOutsideDb: worst(outcome.workers.map(({ after }) => after.outsideDb)),
@@ -93,12 +101,22 @@ export async function planView(actor: Actor, id: string): Promise<z.input<typeof
   const one = only(
     await rows<Found>(`${SELECT} WHERE p.id = :id AND ${visible(planPolicy, actor, "p")}`, { id }),
   );
+  const row = toRow(actor, one);
   return {
-    ...toRow(actor, one),
+    ...row,
     baseDate: one.baseDate,
     methodVersion: one.methodVersion,
     changes: one.changes,
+    timetable: one.timetable,
     outcome: one.outcome,
+    steps: await stepsOf(one.id),
+    owners: row.can.step ? await stepOwners(one.siteId) : [],
+    findings: row.can.step
+      ? await findingsToMend(
+          actor,
+          one.outcome.workers.map(({ workerId }) => workerId),
+        )
+      : [],
     names: await namesOf(one.changes),
     since: await since(actor, one),
   };

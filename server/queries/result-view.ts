@@ -71,12 +71,22 @@ async function view(found: Found | null): Promise<z.input<typeof ResultView>> {
         ),
       )
     : [];
+  const roundIds = isComputed
+    ? refs.shifts.flatMap(({ tasks }) =>
+        tasks.flatMap(({ seenFrom = [] }) => seenFrom.map(([, roundId]) => roundId)),
+      )
+    : [];
   const sources = !isComputed
     ? []
     : await rows<{ id: string; label: string; note: string | null }>(
         `SELECT l.id, k.name || ', ' || l.effective_from AS label, nullif(l.source_note, '') AS note FROM task_levels l JOIN tasks k ON k.id = l.task_id WHERE l.id = ANY (CAST(:levelIds AS uuid[]))
-     UNION ALL SELECT p.id, m.name || ', ' || p.number, p.reason FROM protector_model_revisions p JOIN protector_models m ON m.id = p.model_id WHERE p.id = ANY (CAST(:modelIds AS uuid[]))`,
-        { levelIds: `{${levelIds.join(",")}}`, modelIds: `{${modelIds.join(",")}}` },
+     UNION ALL SELECT p.id, m.name || ', ' || p.number, p.reason FROM protector_model_revisions p JOIN protector_models m ON m.id = p.model_id WHERE p.id = ANY (CAST(:modelIds AS uuid[]))
+     UNION ALL SELECT o.id, coalesce(u.name, ''), nullif(o.note, '') FROM wearing_rounds o LEFT JOIN users u ON u.id = o.author_id WHERE o.id = ANY (CAST(:roundIds AS uuid[]))`,
+        {
+          levelIds: `{${levelIds.join(",")}}`,
+          modelIds: `{${modelIds.join(",")}}`,
+          roundIds: `{${roundIds.join(",")}}`,
+        },
       );
   const timedIds = isComputed
     ? refs.shifts.flatMap(({ tasks }) => tasks.flatMap(({ id, use }) => (use ? [id] : [])))

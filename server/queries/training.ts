@@ -13,7 +13,7 @@ import { decodeCursor, pageFrom } from "../lib/cursor";
 import { row, rows } from "../lib/db";
 import { only } from "../lib/only";
 import { type Actor, abilities, visible } from "../lib/policy";
-import { trainingPolicy, workerPolicy } from "../policies";
+import { ownTrainingPolicy, trainingPolicy, workerPolicy } from "../policies";
 
 const SELECT_SESSIONS = `SELECT t.id, t.site_id AS "siteId", s.name AS "siteName", t.held_on::text AS "heldOn", t.title, t.duration_min AS "durationMin",
     t.file_id AS "fileId", f.name AS "fileName", (SELECT count(*)::int FROM training_attendances a WHERE a.session_id = t.id) AS attendees,
@@ -128,11 +128,11 @@ export async function listTrainingDues(
 }
 
 /** The trainings of one worker whom the actor may see, and when the next is due. */
-export async function workerTraining(workerId: string): Promise<WorkerTraining> {
+export async function workerTraining(actor: Actor, workerId: string): Promise<WorkerTraining> {
   const held = await rows<WorkerTraining["rows"][number]>(
     `SELECT t.id, t.held_on::text AS "heldOn", t.title, t.duration_min AS "durationMin", t.file_id AS "fileId", f.name AS "fileName"
      FROM training_attendances a JOIN training_sessions t ON t.id = a.session_id LEFT JOIN files f ON f.id = t.file_id
-     WHERE a.worker_id = :workerId AND t.struck_reason IS NULL ORDER BY t.held_on DESC, t.id LIMIT 100`,
+     WHERE a.worker_id = :workerId AND t.struck_reason IS NULL AND ${visible(ownTrainingPolicy, actor, "t")} ORDER BY t.held_on DESC, t.id LIMIT 100`,
     { workerId },
   );
   const due = await row<TrainingDue>(trainingDues("w.id = :workerId"), {

@@ -5,8 +5,8 @@ import { row, rows } from "../lib/db";
 import { type Actor, findVisible, visible } from "../lib/policy";
 import { Area } from "../models/site";
 import { Job } from "../models/task";
-import { Worker } from "../models/worker";
-import { programmePolicy, workerPolicy } from "../policies";
+import { Crew, Worker } from "../models/worker";
+import { crewPolicy, programmePolicy, workerPolicy } from "../policies";
 import { assignmentsOn, gridTasks, lastWearing } from "./day-grid";
 import { fitsOf, offersAt, pairsOf } from "./register-offers";
 import { settingsInForce } from "./site-settings";
@@ -26,6 +26,8 @@ export async function scopeOf(
       return findVisible(Job, programmePolicy, scopeId, actor);
     case "area":
       return findVisible(Area, programmePolicy, scopeId, actor);
+    case "crew":
+      return findVisible(Crew, crewPolicy, scopeId, actor);
   }
 }
 
@@ -33,6 +35,7 @@ const OF_SCOPE: Record<PlanScope["scopeKind"], string> = {
   worker: "w.id = :scopeId",
   job: "w.job_id = :scopeId",
   area: `EXISTS (SELECT 1 FROM job_tasks j JOIN tasks k ON k.id = j.task_id WHERE j.job_id = w.job_id AND k.area_id = :scopeId)`,
+  crew: "EXISTS (SELECT 1 FROM crew_memberships m WHERE m.worker_id = w.id AND m.crew_id = :scopeId AND m.valid @> CAST(:date AS date))",
 };
 
 interface WorkerRow extends Omit<TriedWorker, "tasks" | "assignments" | "fits" | "lengthMin"> {
@@ -41,7 +44,7 @@ interface WorkerRow extends Omit<TriedWorker, "tasks" | "assignments" | "fits" |
 }
 
 /**
- * The nominal days of a worker, a group or of all who work in an area, with what they wear and how long: what the Crew
+ * The nominal days of a worker, a group, a crew or of all who work in an area, with what they wear and how long: what the Crew
  * sheet expects of today, or of the date `on`. A fixed number of statements.
  *
  * @throws AppError not-found; not-computed, where the site has no rules today

@@ -9,6 +9,7 @@ import { findNotices, summarize } from "./entry-notices";
 import { listFindings } from "./finding-view";
 import { lettersWaiting } from "./letters";
 import { nextShiftSql } from "./next-shift";
+import { ownStepsDue } from "./plan-steps";
 
 interface CrewRow {
   id: string;
@@ -78,6 +79,7 @@ export async function waitingFor(
     outgoing: [...byEntry].map(([entryId, notices]) => summarize(entryId, notices)),
     troubled,
     calibrationsDue: due,
+    stepsDue: await ownStepsDue(actor, siteId),
   };
 }
 

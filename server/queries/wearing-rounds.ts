@@ -1,17 +1,22 @@
 import type { z } from "zod";
-import type {
-  WearingCrews,
-  WearingFilter,
-  WearingRoundPage,
-  WearingRoundView,
-  WearingTally,
+import {
+  OWN_REPORT_CHANGE_DAYS,
+  type OwnReports,
+  type WearingCrews,
+  type WearingFilter,
+  type WearingRoundPage,
+  type WearingRoundView,
+  type WearingTally,
 } from "../../shared/schemas/wearing";
+import { addDays } from "../../shared/time/zone";
+import { todayAt } from "../lib/calendar";
 import { decodeCursor, pageFrom } from "../lib/cursor";
 import { rows } from "../lib/db";
 import { only } from "../lib/only";
 import { type Actor, abilities, visible } from "../lib/policy";
 import type { Crew } from "../models/worker";
 import { roundPolicy, wearingPolicy } from "../policies";
+import { lookReplaced } from "./own-attenuation";
 
 type Found = Omit<WearingRoundView, "can">;
 
@@ -21,7 +26,7 @@ const SELECT_ROUNDS = `SELECT o.id, o.revision, o.site_id AS "siteId", s.name AS
   CROSS JOIN LATERAL (
     SELECT sum(l.worn_count)::int AS "wornCount", sum(l.seen_count)::int AS "seenCount",
       json_agg(json_build_object('workerId', l.worker_id, 'workerName', w.name, 'taskId', l.task_id, 'taskName', t.name,
-        'wornCount', l.worn_count, 'seenCount', l.seen_count) ORDER BY w.name, t.name) AS looks
+        'wornCount', l.worn_count, 'seenCount', l.seen_count, 'isReplaced', ${lookReplaced("l", "o")}) ORDER BY w.name, t.name) AS looks
     FROM wearing_looks l JOIN workers w ON w.id = l.worker_id JOIN tasks t ON t.id = l.task_id WHERE l.round_id = o.id) k`;
 
 const present = (actor: Actor, found: Found): WearingRoundView => ({
@@ -94,4 +99,34 @@ export async function wearingTally(crew: Crew, date: string): Promise<WearingTal
           { ids },
         );
   return { crewId: crew.id, crewName: crew.name, siteId: crew.siteId, date, tasks, workers };
+}
+
+type StandingReport = Omit<OwnReports["rows"][number], "changeableUntil" | "canChange"> & {
+  firstSaidOn: string;
+};
+
+/** The last day on which a worker may say anew what was first said on a day. */
+export const changeableUntil = (firstSaidOn: string): string =>
+  addDays(firstSaidOn, OWN_REPORT_CHANGE_DAYS);
+
+/** Own reports of a worker that stand, from a day on: the latest of each day and task. */
+export async function ownReports(
+  worker: { id: string; timeZone: string },
+  from: string,
+): Promise<OwnReports["rows"]> {
+  const today = todayAt(worker.timeZone);
+  const found = await rows<StandingReport>(
+    `SELECT DISTINCT ON (l.seen_on, l.task_id) l.seen_on::text AS date, l.task_id AS "taskId", t.name AS "taskName", l.worn_count AS "wornCount",
+       l.seen_count AS "seenCount", o.note, (o.created_at AT TIME ZONE :timeZone)::date::text AS "saidOn",
+       (min(o.created_at) OVER (PARTITION BY l.seen_on, l.task_id) AT TIME ZONE :timeZone)::date::text AS "firstSaidOn",
+       coalesce(u.worker_id = l.worker_id, FALSE) AS "isByWorker"
+     FROM wearing_looks l JOIN wearing_rounds o ON o.id = l.round_id JOIN tasks t ON t.id = l.task_id LEFT JOIN users u ON u.id = o.author_id
+     WHERE l.worker_id = :workerId AND l.seen_on >= CAST(:from AS date) AND o.source = 'own-report' AND o.struck_reason IS NULL
+     ORDER BY l.seen_on DESC, l.task_id, o.created_at DESC, o.id DESC`,
+    { workerId: worker.id, from, timeZone: worker.timeZone },
+  );
+  return found.map(({ firstSaidOn, ...report }) => {
+    const until = changeableUntil(firstSaidOn);
+    return { ...report, changeableUntil: until, canChange: today <= until };
+  });
 }

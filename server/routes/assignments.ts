@@ -48,6 +48,7 @@ export function defineAssignmentRoutes(): void {
       may: may.readDays,
       params: IdParams,
       reply: AssignmentList,
+      reads: { kind: "page", worker: ({ params }) => params.id },
     },
     async ({ actor, params }) => {
       const worker = await findVisible(Worker, workerPolicy, params.id, actor);

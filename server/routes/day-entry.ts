@@ -75,6 +75,7 @@ export function defineDayEntryRoutes(): void {
       may: may.readDays,
       params: IdParams,
       reply: ShiftView,
+      reads: { kind: "shift", worker: (_, { workerId }) => workerId },
     },
     async ({ actor, params }) => {
       const shift = await findVisible(Shift, shiftPolicy, params.id, actor);

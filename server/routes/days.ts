@@ -45,6 +45,7 @@ export function defineDayRoutes(): void {
       params: IdParams,
       query: HistoryFilter,
       reply: HistoryPage,
+      reads: { kind: "history", worker: ({ params }) => params.id },
     },
     async ({ actor, params, query }) => {
       const worker = await findVisible(Worker, workerPolicy, params.id, actor);
@@ -59,6 +60,7 @@ export function defineDayRoutes(): void {
       may: may.readDays,
       params: DayParams,
       reply: ResultView,
+      reads: { kind: "result", worker: ({ params }) => params.id },
     },
     ({ actor, params }) => resultOfDay(actor, params.id, params.date),
   );
@@ -70,6 +72,7 @@ export function defineDayRoutes(): void {
       may: may.readDays,
       params: z.object({ id: z.uuid() }),
       reply: ResultView,
+      reads: { kind: "result", worker: (_, { worker }) => worker.id },
     },
     ({ actor, params }) => storedResult(actor, params.id),
   );

@@ -8,6 +8,7 @@ import {
   YearFileQuery,
   YearQuery,
 } from "../../shared/schemas/waiting";
+import { recordYearRead } from "../commands/record-read";
 import type { Config } from "../config";
 import { streamYear } from "../exports/year-csv";
 import { yearDictionary } from "../exports/year-dictionary";
@@ -17,12 +18,15 @@ import { inTransaction } from "../lib/db";
 import { endpoint } from "../lib/endpoint";
 import { type Actor, authorize, findVisible } from "../lib/policy";
 import { Site } from "../models/site";
-import { may, sitePolicy } from "../policies";
+import { may, sitePolicy, yearPolicy } from "../policies";
 import { gapNames, yearGaps } from "../queries/gaps";
 
-async function siteToExport(actor: Actor, siteId: string): Promise<Site> {
+async function siteToExport(
+  actor: Actor,
+  { siteId, year }: { siteId: string; year: number },
+): Promise<Site> {
   const site = await findVisible(Site, sitePolicy, siteId, actor);
-  authorize(sitePolicy, actor, "export", site);
+  authorize(yearPolicy, actor, "export", { siteId, year });
   return site;
 }
 
@@ -48,13 +52,14 @@ export function defineExportRoutes(config: Pick<Config<"web">, "DATABASE_URL">):
     async ({ actor, query, response }) => {
       // The event is committed before the first record leaves: a file that breaks off was an export too.
       const site = await inTransaction({ organizationId: actor.organizationId }, async () => {
-        const found = await siteToExport(actor, query.siteId);
+        const found = await siteToExport(actor, query);
         await recordAudit(actor, {
           action: "export-year",
           subjectKind: "site",
           subjectId: found.id,
           values: { year: query.year, workers: query.workers },
         });
+        await recordYearRead(actor, found.id, query.year);
         return found;
       });
       response
@@ -75,12 +80,15 @@ export function defineExportRoutes(config: Pick<Config<"web">, "DATABASE_URL">):
     async ({ actor, query, response }) => {
       const record = (action: string, values: Record<string, unknown>) =>
         inTransaction({ organizationId: actor.organizationId }, async () => {
-          const site = await siteToExport(actor, query.siteId);
+          const site = await siteToExport(actor, query);
           await recordAudit(actor, { action, subjectKind: "site", subjectId: site.id, values });
           return site;
         });
       const { year, workers } = query;
       const site = await record("export-year-records", { year, workers });
+      await inTransaction({ organizationId: actor.organizationId }, () =>
+        recordYearRead(actor, site.id, year),
+      );
       const salt = randomBytes(16).toString("hex");
       response.attachment(fileName(site.name, year, "zip")).type("application/zip");
       try {
@@ -130,7 +138,7 @@ export function defineExportRoutes(config: Pick<Config<"web">, "DATABASE_URL">):
       reply: GapsView,
     },
     async ({ actor, query }) => {
-      await siteToExport(actor, query.siteId);
+      await siteToExport(actor, query);
       return yearGaps(actor, query);
     },
   );
@@ -144,7 +152,7 @@ export function defineExportRoutes(config: Pick<Config<"web">, "DATABASE_URL">):
       reply: GapNames,
     },
     async ({ actor, query }) => {
-      await siteToExport(actor, query.siteId);
+      await siteToExport(actor, query);
       return { rows: await gapNames(actor, query, query.kind) };
     },
   );

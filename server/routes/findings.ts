@@ -35,6 +35,7 @@ export function defineFindingRoutes(): void {
       may: may.readDays,
       params: IdParams,
       reply: FindingView,
+      reads: { kind: "finding", worker: (_, { worker }) => worker?.id },
     },
     async ({ actor, params }) =>
       findingView(actor, await findVisible(Finding, findingPolicy, params.id, actor)),

@@ -53,6 +53,7 @@ export function defineFitTestRoutes(): void {
       may: may.readFitting,
       params: IdParams,
       reply: FittingDesk,
+      reads: { kind: "fits", worker: ({ params }) => params.id },
     },
     async ({ actor, params }) =>
       fittingDesk(actor, await findVisible(Worker, workerPolicy, params.id, actor)),
@@ -65,6 +66,7 @@ export function defineFitTestRoutes(): void {
       may: may.readDays,
       query: FitTestFilter,
       reply: FitTestPage,
+      reads: { kind: "fits", worker: ({ query }) => query.workerId },
     },
     ({ actor, query }) => listFitTests(actor, query),
   );

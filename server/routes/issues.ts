@@ -49,6 +49,7 @@ export function defineIssueRoutes(): void {
       may: may.readDays,
       query: IssueFilter,
       reply: IssuePage,
+      reads: { kind: "fits", worker: ({ query }) => query.workerId },
     },
     ({ actor, query }) => listIssues(actor, query),
   );
@@ -114,6 +115,7 @@ export function defineIssueRoutes(): void {
       may: may.officer,
       params: IdParams,
       reply: RefusalList,
+      reads: { kind: "fits", worker: ({ params }) => params.id },
     },
     async ({ actor, params }) => {
       const worker = await findVisible(Worker, workerPolicy, params.id, actor);

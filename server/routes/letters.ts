@@ -35,6 +35,7 @@ export function defineLetterRoutes(): void {
       may: may.readLetters,
       params: IdParams,
       reply: LetterView,
+      reads: { kind: "letter", worker: (_, { worker }) => worker.id },
     },
     ({ actor, params }) => letterView(actor, params.id),
   );

@@ -51,6 +51,7 @@ export function defineMicrophoneCheckRoutes(): void {
       params: IdParams,
       query: PageQuery,
       reply: MicrophoneCheckPage,
+      reads: { kind: "fits", worker: ({ params }) => params.id },
     },
     async ({ actor, params, query }) => {
       const worker = await findVisible(Worker, workerPolicy, params.id, actor);

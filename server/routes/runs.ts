@@ -17,13 +17,19 @@ import { listRuns, runView } from "../queries/run-view";
 export function defineRunRoutes(): void {
   endpoint.get(
     "/runs",
-    { summary: "Runs, latest first", may: may.readCrews, query: RunFilter, reply: RunPage },
+    { summary: "Runs, latest first", may: may.listRecords, query: RunFilter, reply: RunPage },
     ({ actor, query }) => listRuns(actor, query),
   );
 
   endpoint.get(
     "/runs/:id",
-    { summary: "A run with its readings", may: may.readDays, params: IdParams, reply: RunView },
+    {
+      summary: "A run with its readings",
+      may: may.readDays,
+      params: IdParams,
+      reply: RunView,
+      reads: { kind: "run", worker: (_, { workerId }) => workerId },
+    },
     async ({ actor, params }) =>
       runView(actor, await findVisible(Run, runPolicy, params.id, actor)),
   );

@@ -71,10 +71,11 @@ export function defineTrainingRoutes(): void {
       may: may.readDays,
       params: IdParams,
       reply: WorkerTraining,
+      reads: { kind: "training", worker: ({ params }) => params.id },
     },
     async ({ actor, params }) => {
       const worker = await findVisible(Worker, workerPolicy, params.id, actor);
-      return workerTraining(worker.id);
+      return workerTraining(actor, worker.id);
     },
   );
 

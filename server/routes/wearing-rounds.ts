@@ -1,6 +1,8 @@
 import { z } from "zod";
 import { IdParams, IsoDate } from "../../shared/schemas/common";
 import {
+  OwnReports,
+  OwnReportsFilter,
   WearingCrews,
   WearingFilter,
   WearingRoundInput,
@@ -16,10 +18,18 @@ import { authorize, findVisible } from "../lib/policy";
 import { requireRevision } from "../lib/revision";
 import { WearingRound } from "../models/shop-floor";
 import { Site } from "../models/site";
-import { Crew } from "../models/worker";
-import { may, roundPolicy, sitePolicy, wearingEntryPolicy, wearingPolicy } from "../policies";
+import { Crew, Worker } from "../models/worker";
+import {
+  may,
+  ownReportPolicy,
+  roundPolicy,
+  sitePolicy,
+  wearingEntryPolicy,
+  wearingPolicy,
+} from "../policies";
 import {
   listWearingRounds,
+  ownReports,
   wearingCrews,
   wearingRoundView,
   wearingTally,
@@ -59,6 +69,23 @@ export function defineWearingRoutes(): void {
       reply: WearingRoundPage,
     },
     ({ actor, query }) => listWearingRounds(actor, query),
+  );
+
+  endpoint.get(
+    "/workers/:id/own-reports",
+    {
+      summary: "What a worker said of their own wearing: the latest of each day and task",
+      may: may.readOwnReports,
+      params: IdParams,
+      query: OwnReportsFilter,
+      reply: OwnReports,
+      reads: { kind: "page", worker: ({ params }) => params.id },
+    },
+    async ({ actor, params, query }) => {
+      const { id, siteId } = await findVisible(Worker, ownReportPolicy, params.id, actor);
+      const { timeZone } = await findVisible(Site, sitePolicy, siteId, actor);
+      return { rows: await ownReports({ id, timeZone }, query.from) };
+    },
   );
 
   endpoint.post(

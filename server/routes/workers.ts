@@ -29,7 +29,7 @@ export function defineWorkerRoutes(): void {
     "/workers",
     {
       summary: "Workers by name, with their last day",
-      may: may.readCrews,
+      may: may.listRecords,
       query: WorkerFilter,
       reply: WorkerPage,
     },
@@ -52,7 +52,13 @@ export function defineWorkerRoutes(): void {
 
   endpoint.get(
     "/workers/:id",
-    { summary: "One worker", may: may.readDays, params: IdParams, reply: WorkerView },
+    {
+      summary: "One worker",
+      may: may.readDays,
+      params: IdParams,
+      reply: WorkerView,
+      reads: { kind: "page", worker: ({ params }) => params.id },
+    },
     async ({ actor, params }) => view(actor, params.id),
   );
 

@@ -9,6 +9,20 @@ export function codeText(i18n: I18n, code: string, params: ProblemParams): strin
       return i18n.t("The server can’t be reached. What you typed is kept.");
     case "signed-out":
       return i18n.t("You have been signed out. Sign in again; what you typed is kept.");
+    case "token-unknown":
+      return i18n.t("Nobody has this token. Make a new one under your account.");
+    case "token-over":
+      return i18n.t("This token has expired or was ended. Make a new one under your account.");
+    case "token-person-gone":
+      return i18n.t(
+        "The person of this token has left or has no role any more. The token opens nothing.",
+      );
+    case "token-scope":
+      return i18n.t("This token was not made for that. Nothing was changed.");
+    case "access-ended":
+      return i18n.t(
+        "Your access was for a time, and that is over. An administrator can give it anew.",
+      );
     case "no-grant":
       return i18n.t("Nobody has given you a role here yet. Ask your administrator.");
     case "csrf":

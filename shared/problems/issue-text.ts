@@ -1,5 +1,6 @@
 import type { I18n } from "@lingui/core";
 import { formatLevel, formatLevelChange } from "../format/level";
+import { decimalMark } from "../format/number";
 import { isLocale } from "../i18n/index";
 
 export interface FieldIssue {
@@ -80,7 +81,7 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("Only whole steps count here.");
     case "ambiguous":
       return i18n.t("This can be read in two ways. Write decimals with a “{mark}”", {
-        mark: i18n.locale === "de" ? "," : ".",
+        mark: decimalMark(isLocale(i18n.locale) ? i18n.locale : "en"),
       });
     case "not-a-number":
       return i18n.t("This is not a number.");
@@ -90,6 +91,16 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("This is not a date.");
     case "not-a-time":
       return i18n.t("This is not a time of day.");
+    case "tokens-enough":
+      return i18n.t("You have {count} tokens that work. End one first.", {
+        count: Number(issue.params.count),
+      });
+    case "reads-it-already":
+      return i18n.t("This person reads the site already, and for longer.");
+    case "day-is-over":
+      return i18n.t("This day is over at the site.");
+    case "year-not-begun":
+      return i18n.t("This year has not begun.");
     case "email-taken":
       return i18n.t("Another person has this mail address.");
     case "employee-number-taken":
@@ -147,6 +158,10 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
     case "band-missing":
       return i18n.t(
         "Mean and deviation of a band belong together: type both, or leave both empty.",
+      );
+    case "subjects-without-bands":
+      return i18n.t(
+        "Mean and deviation by band are still empty, and without them the subjects count for nothing: take both from the subjects, or type them.",
       );
     case "attenuation-negative":
       return i18n.t(
@@ -267,6 +282,27 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("This worker is not among those the changes are tried for.");
     case "protector-unknown":
       return i18n.t("This protector is not on the register in use.");
+    case "task-nobody-may":
+      return i18n.t("Nobody may do this task: say who is qualified, or take the task out.");
+    case "task-not-measured":
+      return i18n.t(
+        "The noise of this task is not on record. Measure it, or give it a level first.",
+      );
+    case "task-unbounded":
+      return i18n.t(
+        "What this task does to these people’s dose is not known: its level is of another kind, or what their protectors take off.",
+      );
+    case "staffing-outside":
+      return i18n.t("From comes before until, and both lie within the shift.");
+    case "staffing-overlaps":
+      return i18n.t("This time overlaps the one before it.");
+    case "staffing-more-than-people":
+      return i18n.t(
+        "There {count, plural, one {is # person} other {are # people}}: nobody else can be put there.",
+        { count: Number(params.count) },
+      );
+    case "rest-or-quiet":
+      return i18n.t("Say what time at none of the tasks is: one task, or quiet of a level.");
     case "criterion-unknown":
       return i18n.t("The rules of this site have no such criterion.");
     case "reading-empty":
@@ -277,6 +313,13 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("This date lies ahead.");
     case "look-twice":
       return i18n.t("This worker is in this round with this task already.");
+    case "answer-needed":
+      return i18n.t("Choose an answer for one task at least.");
+    case "said-long-ago":
+      return i18n.t(
+        "You said this more than {days} days ago. Ask your safety officer to change it.",
+        { days: params.days },
+      );
     case "more-worn-than-seen":
       return i18n.t("More times worn than seen.");
     case "before-issue":

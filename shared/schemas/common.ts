@@ -1,10 +1,11 @@
 import { z } from "zod";
+import { LOCALES } from "../i18n/compiled/locales";
 
 export const IdParams = z.object({ id: z.uuid() });
 export const IsoDate = z.iso.date();
 /** HH:MM, local. */
 export const TimeOfDay = z.string().regex(/^([01]\d|2[0-3]):[0-5]\d$/);
-export const Language = z.enum(["en", "de"]);
+export const Language = z.enum(LOCALES);
 export type Language = z.infer<typeof Language>;
 
 /** A noise level that a person may enter, dB. */

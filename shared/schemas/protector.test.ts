@@ -31,6 +31,12 @@ function issuesOf(fields: Record<string, unknown>) {
 describe("what a certificate can't say is refused at its field, in words of its own", () => {
   test.each([
     ["an SNR below its L", { snrDb: 15, hDb: 30, mDb: 24, lDb: 18 }, "snrDb", "snr-below-l"],
+    [
+      "subjects without means and deviations",
+      { subjectsDb: [same(20), same(24)] },
+      "subjectsDb",
+      "subjects-without-bands",
+    ],
     ["H without M and L", { hDb: 30 }, "mDb", "hml-all-three"],
     [
       "a negative deviation",

@@ -3,6 +3,10 @@ import { z } from "zod";
 export const RoleName = z.enum(["officer", "supervisor", "worker", "auditor", "administrator"]);
 export type RoleName = z.infer<typeof RoleName>;
 
+/** Roles, and what is none: somebody who reads one year of a site for a while. */
+export const SessionRole = z.enum([...RoleName.options, "visitor"]);
+export type SessionRole = z.infer<typeof SessionRole>;
+
 export const SiteRef = z.object({
   id: z.uuid(),
   name: z.string(),
@@ -18,13 +22,16 @@ export const SessionView = z.object({
       email: z.string().nullable(),
       language: z.string(),
       workerId: z.uuid().nullable(),
-      roles: z.array(RoleName),
+      roles: z.array(SessionRole),
       organizationName: z.string(),
       sites: z.array(SiteRef),
+      visits: z.array(z.object({ siteId: z.uuid(), year: z.number() })),
     })
     .nullable(),
   /** Somebody the provider vouched for, but to whom nothing is granted. */
   pendingName: z.string().nullable(),
+  /** When access that was for a time ended. */
+  endedAt: z.string().nullable(),
 });
 export type SessionView = z.infer<typeof SessionView>;
 export type SessionUser = NonNullable<SessionView["user"]>;

@@ -48,6 +48,11 @@ export const UserView = z.object({
       role: RoleName,
       siteId: z.uuid().nullable(),
       siteName: z.string().nullable(),
+      /** A visitor's, and when it ends. */
+      year: z.number().nullable(),
+      endsAt: z.string().nullable(),
+      /** Of the sign-in service, where the role follows it. */
+      groupName: z.string().nullable(),
     }),
   ),
   lastSignInAt: z.string().nullable(),

@@ -62,6 +62,8 @@ export const WaitingView = z.object({
   /** Not taken by the mail server, or nobody knows. */
   troubled: z.array(NoticeRow),
   calibrationsDue: z.array(z.object({ id: z.uuid(), name: z.string(), dueOn: IsoDate })),
+  /** Steps of plans that are in the reader's own hands and due. */
+  stepsDue: z.array(z.object({ id: z.uuid(), planId: z.uuid(), what: z.string(), dueOn: IsoDate })),
 });
 export type WaitingView = z.infer<typeof WaitingView>;
 
@@ -69,7 +71,9 @@ export type WaitingView = z.infer<typeof WaitingView>;
 export const GapKind = z.enum([
   "not-measured",
   "no-protector",
+  "not-fitted",
   "not-trained",
+  "letter-late",
   "notice-late",
   "notice-not-sent",
   "not-assessed",

@@ -1,14 +1,12 @@
 import { useLingui } from "@lingui/react";
-import { useEffect, useState } from "react";
-import { type ConnectionState, connectionEvents } from "../lib/api";
+import { useConnection } from "../lib/connection";
 import { Banner } from "./banner";
 import { SignInAgain } from "./problem";
 
 /** Says at the top of the page that the connection or the session is gone; what is typed stays where it is. */
 export function ConnectionBanner() {
   const { i18n } = useLingui();
-  const [state, setState] = useState<ConnectionState>("ok");
-  useEffect(() => connectionEvents.subscribe(setState), []);
+  const state = useConnection();
   if (state === "offline")
     return (
       <Banner title={i18n.t("No connection.")}>

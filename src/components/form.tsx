@@ -452,11 +452,11 @@ export function DateField<Values extends FieldValues, Output>(props: FieldProps<
   return (
     <ParsedField
       {...props}
-      unit={props.unit ?? (locale === "de" ? i18n.t("dd.mm.yyyy") : i18n.t("yyyy-mm-dd"))}
+      unit={props.unit ?? (locale === "en" ? i18n.t("yyyy-mm-dd") : i18n.t("dd.mm.yyyy"))}
       kind="date"
       code="not-a-date"
       parse={(text) => orInvalid(parseDate(text, locale), text)}
-      write={(value: string) => (locale === "de" ? formatShortDate(value, "de") : value)}
+      write={(value: string) => (locale === "en" ? value : formatShortDate(value, locale))}
     />
   );
 }

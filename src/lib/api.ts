@@ -26,6 +26,10 @@ export class ApiError extends Error {
   }
 }
 
+/** Not refused, but not received, or by a server that can't do anything: the same may be sent again. */
+export const isUnreached = (error: unknown): boolean =>
+  error instanceof ApiError && (error.status === 0 || error.status >= 502);
+
 /** `unavailable`: the server answers, but can't do anything, as without its database. */
 export type ConnectionState = "ok" | "offline" | "unavailable" | "session-expired";
 

@@ -2,7 +2,8 @@ import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { type ReactNode, useMemo, useRef } from "react";
 import { Link, useNavigate, useParams, useSearchParams } from "react-router-dom";
-import { formatTime, localDateOf } from "../../shared/format/date";
+import { formatInstant, formatTime, localDateOf } from "../../shared/format/date";
+import type { Locale } from "../../shared/i18n";
 import { ruleSetVersion } from "../../shared/rule-sets";
 import { stripFrame } from "../components/day-figures";
 import { Empty } from "../components/empty";
@@ -23,6 +24,7 @@ import {
   splitLast,
 } from "../features/crew-sheet/sheet-parts";
 import { hasRole, useUser } from "../features/session/session";
+import { useConnection } from "../lib/connection";
 import { useLocale } from "../lib/i18n";
 import { usePageTitle } from "../lib/page-title";
 import { useNow } from "../lib/use-now";
@@ -80,6 +82,10 @@ function CrewSheet({ crewId }: { crewId: string }) {
   const refresh = () => void sheet.refetch();
   const now = useNow().toISOString();
   const isToday = !data || localDateOf(now, data.crew.timeZone) === data.expected.date;
+
+  const isOffline = useConnection() === "offline";
+  const asOf =
+    data?.asOf ?? (data && isOffline ? new Date(sheet.dataUpdatedAt).toISOString() : null);
 
   let expected: ReactNode = <LoadingPart name="expected" />;
   let last: ReactNode = <LoadingPart name="last" />;
@@ -152,8 +158,15 @@ function CrewSheet({ crewId }: { crewId: string }) {
             <CrewChoice crewId={crewId} crew={data?.crew} crews={data?.crews ?? []} now={now} />
           </InHead>
           <FootWords crewId={crewId} shows={shows} isToday={isToday} />
-          {sheet.isError && <Failed error={sheet.error} onRetry={refresh} />}
-          {!sheet.isError && (
+          {asOf && data && (
+            <p className="sheet-as-of">
+              {i18n.t("As of {time}, no connection.", {
+                time: asOfText(asOf, now, data.crew.timeZone, locale),
+              })}
+            </p>
+          )}
+          {sheet.isError && !data && <Failed error={sheet.error} onRetry={refresh} />}
+          {(!sheet.isError || data) && (
             <div className="sheet-columns">
               {expected}
               <div className="sheet-second">
@@ -173,6 +186,13 @@ function CrewSheet({ crewId }: { crewId: string }) {
       </Folio>
     </>
   );
+}
+
+/** Of today the time is enough. */
+function asOfText(asOf: string, now: string, timeZone: string, locale: Locale): string {
+  return localDateOf(asOf, timeZone) === localDateOf(now, timeZone)
+    ? formatTime(asOf, timeZone)
+    : formatInstant(asOf, timeZone, locale);
 }
 
 function LoadingPart({ name }: { name: "expected" | "last" }) {

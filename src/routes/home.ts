@@ -6,7 +6,7 @@ import { paths } from "../paths";
 export function homeOf(user: Pick<SessionUser, "roles">): string {
   if (hasRole(user, "officer")) return paths.waiting;
   if (hasRole(user, "supervisor")) return paths.crewSheet;
-  if (hasRole(user, "auditor")) return paths.yearFile;
+  if (hasRole(user, "auditor", "visitor")) return paths.yearFile;
   if (hasRole(user, "administrator")) return paths.people;
   return paths.me;
 }

@@ -2,6 +2,7 @@ import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { useParams } from "react-router-dom";
 import { formatDate, formatInstant, localDateOf } from "../../shared/format/date";
+import { isLocale } from "../../shared/i18n/index";
 import { isolate } from "../../shared/i18n/isolate";
 import { ruleSetVersion } from "../../shared/rule-sets";
 import { resultNoticeOf } from "../../shared/rule-sets/result-notice";
@@ -124,7 +125,7 @@ function Letter({ letter }: { letter: LetterView }) {
             <span>
               {formatDate(
                 localDateOf(letter.writtenAt, timeZone),
-                letter.language === "de" ? "de" : "en",
+                isLocale(letter.language) ? letter.language : "en",
               )}
             </span>
           </div>

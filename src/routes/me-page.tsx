@@ -1,9 +1,10 @@
 import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { lazy, type ReactNode, Suspense, useEffect } from "react";
-import { localDateOf } from "../../shared/format/date";
+import { formatDate, localDateOf } from "../../shared/format/date";
 import { Empty } from "../components/empty";
 import { Failed } from "../components/failed";
+import { TextLink } from "../components/link";
 import { PageBody, Section } from "../components/page";
 import { LastShift } from "../features/me/last-shift";
 import { MyProtectors } from "../features/me/my-protectors";
@@ -15,6 +16,7 @@ import { useUser } from "../features/session/session";
 import { WorkerTrainings } from "../features/training/worker-training";
 import { useLocale } from "../lib/i18n";
 import { usePageTitle } from "../lib/page-title";
+import { OWN_REPORT, paths } from "../paths";
 import "../styles/me.css";
 
 /** The picture comes beside the data that it shows: what to do does not wait for it. */
@@ -52,6 +54,10 @@ function OwnPage({ workerId }: { workerId: string }) {
   const findings = useQuery(ownQueries.findings(workerId));
   const lastDay = days.data?.[0] ?? null;
 
+  // The day of which nobody knows how long it was worn: the worker may say it here.
+  const askedFor = findings.data?.find(
+    ({ kind, state }) => kind === "wearing-unknown" && state !== "done",
+  )?.lastDate;
   const error = worker.error ?? days.error ?? findings.error;
   useEffect(() => void loadHistory().catch(() => undefined), []);
   const retry = () => {
@@ -97,13 +103,20 @@ function OwnPage({ workerId }: { workerId: string }) {
             {sentence}
           </p>
         ))}
+        {askedFor && (
+          <p>
+            <TextLink className="me-list-link" to={`${paths.myDay(askedFor)}#${OWN_REPORT}`}>
+              {i18n.t("Say how long you wore it on {day}", { day: formatDate(askedFor, locale) })}
+            </TextLink>
+          </p>
+        )}
         <Section title={i18n.t("My protectors")} id="my-protectors">
           {part(
             <MyProtectors workerId={workerId} protectors={protectors ?? []} lastDay={lastDay} />,
           )}
         </Section>
         <Section title={i18n.t("My last shift")} id="my-last-shift">
-          {part(<LastShift day={lastDay} />)}
+          {part(<LastShift day={lastDay} workerId={workerId} today={today} />)}
         </Section>
         <Section title={i18n.t("My year at the ear")} id="my-year">
           <Suspense fallback={<PartLoading />}>
@@ -120,7 +133,8 @@ function OwnPage({ workerId }: { workerId: string }) {
           <p className="me-note">
             {i18n.t(
               "A help for you, not a medical opinion. Seen by you, your supervisor and your safety officer.",
-            )}
+            )}{" "}
+            <TextLink to={paths.account}>{i18n.t("Who else can see it, and who has")}</TextLink>
           </p>
         </div>
       </div>

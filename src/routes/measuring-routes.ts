@@ -18,7 +18,11 @@ export const measuringRoutes: PageRoute[] = [
   { path: paths.sample, lazy: () => import("./sample-page"), roles: ["officer"] },
   { path: paths.runs, lazy: () => import("./runs-page"), roles: READERS },
   { path: paths.newRun, lazy: () => import("./run-page"), roles: ["officer"] },
-  { path: paths.run(":id"), lazy: () => import("./run-page"), roles: READERS },
+  {
+    path: paths.run(":id"),
+    lazy: () => import("./run-page"),
+    roles: [...READERS, "visitor"],
+  },
   { path: paths.instruments, lazy: () => import("./instruments-page"), roles: READERS },
   { path: paths.instrument(":id"), lazy: () => import("./instrument-page"), roles: READERS },
   { path: paths.historyImports, lazy: () => import("./history-imports-page") },

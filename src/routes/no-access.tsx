@@ -1,5 +1,6 @@
 import { useLingui } from "@lingui/react";
 import { useMutation, useQuery } from "@tanstack/react-query";
+import { formatInstant } from "../../shared/format/date";
 import { WorkerCodeInput } from "../../shared/schemas/session";
 import { ButtonLink } from "../components/button";
 import {
@@ -15,6 +16,7 @@ import { TextButton, TextLink } from "../components/link";
 import { Page, PageBody, PageHead, RunningHead, Section } from "../components/page";
 import { sessionQuery, signOut } from "../features/session/session";
 import { api } from "../lib/api";
+import { useLocale } from "../lib/i18n";
 import { paths } from "../paths";
 
 /** For somebody the provider vouched for, but to whom nobody has granted a role; anybody else is shown the way. */
@@ -23,7 +25,12 @@ export function Component() {
   return (
     <Page head={<RunningHead account={<LangSwitch />} />}>
       <PageBody>
-        {data?.pendingName && <NoRole name={data.pendingName} />}
+        {data?.pendingName &&
+          (data.endedAt ? (
+            <AccessEnded name={data.pendingName} endedAt={data.endedAt} />
+          ) : (
+            <NoRole name={data.pendingName} />
+          ))}
         {data?.user && <HasAccess />}
         {data && !data.user && !data.pendingName && <SignedOut />}
       </PageBody>
@@ -38,6 +45,31 @@ function HasAccess() {
       <PageHead title={i18n.t("You have access here")} />
       <p>
         <TextLink to={paths.home}>{i18n.t("To your first page")}</TextLink>
+      </p>
+    </>
+  );
+}
+
+/** What was granted for a time is over: nothing is wrong with the sign-in. */
+function AccessEnded({ name, endedAt }: { name: string; endedAt: string }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  return (
+    <>
+      <PageHead
+        title={i18n.t("Your access has ended")}
+        lead={i18n.t(
+          "{name}, you had access until {time} by this device’s clock. If you need it again, ask whoever let you in.",
+          {
+            name,
+            time: formatInstant(endedAt, Intl.DateTimeFormat().resolvedOptions().timeZone, locale),
+          },
+        )}
+      />
+      <p>
+        <TextButton onClick={() => void signOut()}>
+          {i18n.t("Sign out and use another sign-in")}
+        </TextButton>
       </p>
     </>
   );

@@ -6,13 +6,16 @@ export const waitingRoutes: PageRoute[] = [
   { path: paths.waiting, lazy: () => import("./waiting-page") },
 ];
 
+/** Who reads the records in their lists, beside those who meet a few of them. */
+const READERS = ["officer", "auditor", "visitor"] as const;
+
 export const officerRoutes: PageRoute[] = [
   { path: paths.duties, lazy: () => import("./duties-page"), roles: ["officer", "auditor"] },
-  { path: paths.findings, lazy: () => import("./findings-page"), roles: ["officer", "auditor"] },
+  { path: paths.findings, lazy: () => import("./findings-page"), roles: READERS },
   { path: paths.finding(":id"), lazy: () => import("./finding-page") },
-  { path: paths.letters, lazy: () => import("./letters-page"), roles: ["officer", "auditor"] },
-  { path: paths.letter(":id"), lazy: () => import("./letter-page"), roles: ["officer", "auditor"] },
-  { path: paths.workers, lazy: () => import("./workers-page"), roles: ["officer", "auditor"] },
+  { path: paths.letters, lazy: () => import("./letters-page"), roles: READERS },
+  { path: paths.letter(":id"), lazy: () => import("./letter-page"), roles: READERS },
+  { path: paths.workers, lazy: () => import("./workers-page"), roles: READERS },
   { path: paths.newWorker, lazy: () => import("./worker-form-page"), roles: ["officer"] },
   { path: paths.changeWorker(":id"), lazy: () => import("./worker-form-page"), roles: ["officer"] },
   { path: paths.worker(":id"), lazy: () => import("./worker-page") },

@@ -2,7 +2,7 @@ import type { I18n } from "@lingui/core";
 import { type ComponentType, use } from "react";
 import type { RouteObject } from "react-router-dom";
 import { addCatalogue, type CataloguePart } from "../../shared/i18n";
-import type { RoleName } from "../../shared/schemas/session";
+import type { SessionRole } from "../../shared/schemas/session";
 import { hasRole, useUser } from "../features/session/session";
 import type { PageRoute } from "./page-route";
 
@@ -37,7 +37,7 @@ export const pageRoute = (path: string, load: LoadPage): RouteObject => {
 const loadNotFound = once(() => import("./not-found"));
 
 /** Somebody else's page is not there: no frame with buttons that the server would refuse. */
-function Guarded({ roles, load }: { roles: readonly RoleName[]; load: LoadPage }) {
+function Guarded({ roles, load }: { roles: readonly SessionRole[]; load: LoadPage }) {
   return <LazyPage load={hasRole(useUser(), ...roles) ? load : loadNotFound} />;
 }
 
@@ -46,7 +46,7 @@ export const withWords = (
   i18n: I18n,
   parts: readonly CataloguePart[],
   pages: readonly PageRoute[],
-  roles: readonly RoleName[],
+  roles: readonly SessionRole[],
 ): RouteObject => ({
   children: pages.map(({ path, lazy, roles: ofPage = roles }) => {
     const load = once(async () => {

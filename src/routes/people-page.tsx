@@ -21,9 +21,13 @@ export function Component() {
           title={i18n.t("People")}
           lead={i18n.t("Who may sign in, and as what. A role takes effect at the next click.")}
           actions={
-            <ButtonLink kind="primary" to={paths.person("new")}>
-              {i18n.t("New person")}
-            </ButtonLink>
+            <>
+              <ButtonLink to={paths.groups}>{i18n.t("Roles by group")}</ButtonLink>
+              <ButtonLink to={paths.visitors}>{i18n.t("Visitors")}</ButtonLink>
+              <ButtonLink kind="primary" to={paths.person("new")}>
+                {i18n.t("New person")}
+              </ButtonLink>
+            </>
           }
         />
         <PeopleTable

@@ -12,10 +12,40 @@ export const peopleRoutes: PageRoute[] = [
     lazy: () => import("./crew-sheet-page"),
     roles: ["supervisor", "officer", "auditor"],
   },
-  { path: paths.yearFile, lazy: () => import("./year-file-page"), roles: ["auditor", "officer"] },
-  { path: paths.trail, lazy: () => import("./trail-page"), roles: ["auditor", "administrator"] },
+  {
+    path: paths.yearFile,
+    lazy: () => import("./year-file-page"),
+    roles: ["auditor", "officer", "visitor"],
+  },
+  {
+    path: paths.draw(":id"),
+    lazy: () => import("./draw-page"),
+    roles: ["auditor", "officer"],
+  },
+  {
+    path: paths.trail,
+    lazy: () => import("./trail-page"),
+    roles: ["auditor", "administrator", "visitor"],
+  },
+  {
+    path: paths.workerAccess(":id"),
+    lazy: () => import("./record-access-page"),
+    roles: ["officer", "supervisor", "auditor", "visitor"],
+  },
+  {
+    path: paths.reads,
+    lazy: () => import("./reads-page"),
+    roles: ["auditor", "administrator"],
+  },
+  {
+    path: paths.account,
+    lazy: () => import("./account-page"),
+    roles: ["officer", "supervisor", "worker", "auditor", "administrator", "visitor"],
+  },
   { path: paths.trailCheck, lazy: () => import("./trail-check-page"), roles: ["auditor"] },
   { path: paths.people, lazy: () => import("./people-page"), roles: ["administrator"] },
+  { path: paths.groups, lazy: () => import("./groups-page"), roles: ["administrator"] },
+  { path: paths.visitors, lazy: () => import("./visitors-page"), roles: ["administrator"] },
   { path: paths.person(":id"), lazy: () => import("./person-page"), roles: ["administrator"] },
   { path: paths.sites, lazy: () => import("./sites-page"), roles: ["administrator"] },
 ];

@@ -6,12 +6,13 @@ import type { UserView } from "../../shared/schemas/user";
 import { Empty } from "../components/empty";
 import { Failed } from "../components/failed";
 import { TextLink } from "../components/link";
-import { Folio, Leaders, MarginNote, PageBody, PageHead } from "../components/page";
+import { Folio, Leaders, MarginNote, PageBody, PageHead, Section } from "../components/page";
 import { EndAccess } from "../features/people/end-access";
 import { IssueCode } from "../features/people/issue-code";
 import { NewPersonForm, PersonForm } from "../features/people/person-form";
 import { peopleQueries } from "../features/people/queries";
 import { hasRole, useUser } from "../features/session/session";
+import { TokensTable } from "../features/tokens/tokens-table";
 import { IfCan } from "../lib/can";
 import { useLocale } from "../lib/i18n";
 import { paths } from "../paths";
@@ -112,6 +113,11 @@ export function Component() {
               onLeave={back}
             />
           </IfCan>
+        )}
+        {person && (
+          <Section title={i18n.t("Tokens for other systems")} id="tokens">
+            <TokensTable userId={person.id} timeZone={timeZone} />
+          </Section>
         )}
       </PageBody>
       <Folio caution={i18n.t("Granting and ending access are events in the trail.")} />

@@ -35,9 +35,12 @@ export function Component() {
           lead={i18n.t("Changes that were tried and kept, with what they are expected to do.")}
           actions={
             choice.isOfficer && (
-              <ButtonLink kind="primary" to={paths.tryChanges}>
-                {i18n.t("Try changes")}
-              </ButtonLink>
+              <>
+                <ButtonLink to={paths.newTimetable}>{i18n.t("Timetable")}</ButtonLink>
+                <ButtonLink kind="primary" to={paths.tryChanges}>
+                  {i18n.t("Try changes")}
+                </ButtonLink>
+              </>
             )
           }
         />
@@ -101,13 +104,32 @@ export function Component() {
             {
               id: "goal",
               head: i18n.t("Everybody Under"),
-              cell: ({ goal, ruleSetKey, ruleSetVersion: version, changesCount }) => (
+              cell: ({
+                kind,
+                goal,
+                ruleSetKey,
+                ruleSetVersion: version,
+                changesCount,
+                stepsOpen,
+                stepsCount,
+              }) => (
                 <span className="two-lines">
                   {goalWord(i18n._.bind(i18n), ruleSetKey, version, goal)}
                   <span className="beneath">
-                    {i18n.t("{count, plural, one {# change} other {# changes}}", {
-                      count: changesCount,
-                    })}
+                    {[
+                      kind === "timetable"
+                        ? i18n.t("timetable")
+                        : i18n.t("{count, plural, one {# change} other {# changes}}", {
+                            count: changesCount,
+                          }),
+                      stepsCount > 0 &&
+                        i18n.t("{open} of {count} steps open", {
+                          open: stepsOpen,
+                          count: stepsCount,
+                        }),
+                    ]
+                      .filter(Boolean)
+                      .join(", ")}
                   </span>
                 </span>
               ),

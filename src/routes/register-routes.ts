@@ -41,6 +41,16 @@ export const registerRoutes: PageRoute[] = [
   { path: paths.task(":id"), lazy: () => import("./task-page") },
   { path: paths.plans, lazy: () => import("./plans-page"), roles: ["officer", "auditor"] },
   { path: paths.tryChanges, lazy: () => import("./try-changes-page"), roles: ["officer"] },
+  {
+    path: paths.newTimetable,
+    lazy: () => import("./plan-timetable-form-page"),
+    roles: ["officer"],
+  },
+  {
+    path: paths.timetable(":id"),
+    lazy: () => import("./plan-timetable-page"),
+    roles: ["officer", "auditor"],
+  },
   { path: paths.plan(":id"), lazy: () => import("./plan-page"), roles: ["officer", "auditor"] },
   { path: paths.rules, lazy: () => import("./rules-page"), roles: ["officer", "auditor"] },
   { path: paths.site(":id"), lazy: () => import("./site-rules-page") },

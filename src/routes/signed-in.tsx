@@ -3,7 +3,7 @@ import { useLingui } from "@lingui/react";
 import { lazy, Suspense, useState } from "react";
 import { Outlet } from "react-router-dom";
 import { isolate } from "../../shared/i18n/isolate";
-import type { RoleName, SessionUser } from "../../shared/schemas/session";
+import type { SessionRole, SessionUser } from "../../shared/schemas/session";
 import { ConnectionBanner } from "../components/connection-banner";
 import { HeadPlace } from "../components/in-head";
 import { type NavItem, Page, RunningHead } from "../components/page";
@@ -18,33 +18,46 @@ function useNavigation(user: SessionUser): NavItem[] {
   const { i18n } = useLingui();
   const officer = hasRole(user, "officer");
   const auditor = hasRole(user, "auditor");
+  /** Reads records, if only of a year. */
+  const reader = auditor || hasRole(user, "visitor");
   const items: (NavItem | false)[] = [
     officer && { to: paths.waiting, label: i18n.t("Waiting for you") },
     officer && { to: paths.days, label: i18n.t("Days") },
     hasRole(user, "supervisor") && { to: paths.crewSheet, label: i18n.t("Crew sheet") },
-    auditor && { to: paths.yearFile, label: i18n.t("Year file") },
-    (officer || auditor) && { to: paths.workers, label: i18n.t("Workers") },
-    (officer || auditor) && { to: paths.findings, label: i18n.t("Findings") },
+    reader && { to: paths.yearFile, label: i18n.t("Year file") },
+    (officer || reader) && { to: paths.workers, label: i18n.t("Workers") },
+    (officer || reader) && { to: paths.findings, label: i18n.t("Findings") },
     (officer || auditor) && { to: paths.toMeasure, label: i18n.t("Measuring") },
     (officer || auditor) && { to: paths.protectors, label: i18n.t("Protectors") },
-    auditor && { to: paths.trail, label: i18n.t("Trail") },
+    reader && { to: paths.trail, label: i18n.t("Trail") },
     (officer || auditor) && { to: paths.plans, label: i18n.t("Plans") },
     (officer || auditor) && { to: paths.rules, label: i18n.t("Rules") },
     hasRole(user, "administrator") && { to: paths.people, label: i18n.t("People") },
     hasRole(user, "administrator") && { to: paths.sites, label: i18n.t("Sites") },
-    hasRole(user, "administrator") && !auditor && { to: paths.trail, label: i18n.t("Trail") },
+    hasRole(user, "administrator") && !reader && { to: paths.trail, label: i18n.t("Trail") },
     hasRole(user, "worker") && user.roles.length > 1 && { to: paths.me, label: i18n.t("My page") },
   ];
   return items.filter((item) => item !== false);
 }
 
 /** What somebody is here, in a word: the role with most to do. */
-function roleWord(i18n: I18n, roles: readonly RoleName[]): string {
+function roleWord(i18n: I18n, roles: readonly SessionRole[]): string {
   if (roles.includes("officer")) return i18n.t("safety officer");
   if (roles.includes("supervisor")) return i18n.t("supervisor");
   if (roles.includes("auditor")) return i18n.t("auditor");
   if (roles.includes("administrator")) return i18n.t("administrator");
+  if (roles.includes("visitor")) return i18n.t("visitor");
   return i18n.t("worker");
+}
+
+/** Where somebody is here: a visitor in one year of a site. */
+function placeText(i18n: I18n, { roles, sites, visits, organizationName }: SessionUser): string {
+  const [site] = sites;
+  const [visit] = visits;
+  if (!site || sites.length > 1) return organizationName;
+  return visit && visits.length === 1 && roles.every((role) => role === "visitor")
+    ? i18n.t("{site}, {year} only", { site: site.name, year: String(visit.year) })
+    : site.name;
 }
 
 /** For those who have them: a worker's page is without. */
@@ -53,6 +66,10 @@ const SearchBox = lazy(() =>
 );
 const AccountMenu = lazy(() =>
   import("../features/session/account-menu").then(({ AccountMenu }) => ({ default: AccountMenu })),
+);
+/** For whoever has a crew and may be without a connection. */
+const Unsent = lazy(() =>
+  import("../features/session/unsent").then(({ Unsent }) => ({ default: Unsent })),
 );
 
 /** Keeps the place of the search until it is there. */
@@ -93,11 +110,7 @@ export function SignedIn() {
                       <SearchBox />
                     </Suspense>
                   )}
-                  {!isPlain && (
-                    <span className="account-site">
-                      {user.sites.length === 1 ? user.sites[0]?.name : user.organizationName}
-                    </span>
-                  )}
+                  {!isPlain && <span className="account-site">{placeText(i18n, user)}</span>}
                   {isPlain && !hasRole(user, "worker") && <b>{user.name}</b>}
                   {isPlain ? (
                     <AccountActions />
@@ -118,6 +131,11 @@ export function SignedIn() {
           <Outlet />
         </HeadPlace>
       </TypedBy>
+      {hasRole(user, "supervisor", "officer") && (
+        <Suspense fallback={null}>
+          <Unsent />
+        </Suspense>
+      )}
       {isAccountAtFoot && (
         <div className="foot-account">
           <b>{user.name}</b>

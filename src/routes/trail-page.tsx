@@ -150,9 +150,14 @@ export function Component() {
           title={i18n.t("Trail")}
           lead={i18n.t("Who did what, and when. Nothing here is ever changed or taken out.")}
           actions={
-            hasRole(user, "auditor") && (
-              <ButtonLink to={paths.trailCheck}>{i18n.t("Check the trail")}</ButtonLink>
-            )
+            <>
+              {hasRole(user, "auditor", "administrator") && (
+                <ButtonLink to={paths.reads}>{i18n.t("Who read whose record")}</ButtonLink>
+              )}
+              {hasRole(user, "auditor") && (
+                <ButtonLink to={paths.trailCheck}>{i18n.t("Check the trail")}</ButtonLink>
+              )}
+            </>
           }
         />
         <FilterRow label={i18n.t("Narrow the trail")}>

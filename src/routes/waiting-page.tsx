@@ -295,6 +295,7 @@ function WaitingMargin({
       data.troubled.length +
       data.toBeChecked.length +
       data.calibrationsDue.length +
+      data.stepsDue.length +
       data.letters.toPrint +
       data.letters.late ===
     0;
@@ -372,6 +373,26 @@ function WaitingMargin({
               label: (
                 <TextLink className="is-quiet" to={paths.instruments}>
                   {name}
+                </TextLink>
+              ),
+              value:
+                dueOn < data.today
+                  ? i18n.t("since {date}", { date: formatDayMonth(dueOn, locale) })
+                  : dueOn <= addDays(data.today, 6)
+                    ? formatWeekday(dueOn, locale)
+                    : formatDayMonth(dueOn, locale),
+            }))}
+          />
+        </MarginNote>
+      )}
+      {data.stepsDue.length > 0 && (
+        <MarginNote title={i18n.t("Your steps of plans")}>
+          <Leaders
+            items={data.stepsDue.map(({ id, planId, what, dueOn }) => ({
+              key: id,
+              label: (
+                <TextLink className="is-quiet" to={`${paths.plan(planId)}#steps`}>
+                  {what}
                 </TextLink>
               ),
               value:

@@ -1,6 +1,6 @@
 import { useLingui } from "@lingui/react";
 import { useInfiniteQuery, useQuery } from "@tanstack/react-query";
-import { type ReactNode, useEffect, useMemo } from "react";
+import { type ReactNode, useEffect, useMemo, useRef } from "react";
 import { useLocation, useParams, useSearchParams } from "react-router-dom";
 import type { z } from "zod";
 import { formatDate, formatShortDate } from "../../shared/format/date";
@@ -86,23 +86,33 @@ function WorkerSheet({ worker }: { worker: WorkerView }) {
         marginWidthPx={240}
         margin={
           <>
-            <MarginNote title={i18n.t("Crews")}>
-              {worker.crews.length === 0 && <p>{i18n.t("In no crew.")}</p>}
-              {worker.crews.map((crew) => (
-                <p key={`${crew.id} ${crew.fromDate}`}>
-                  <TextLink className="is-quiet is-name" to={paths.crew(crew.id)}>
-                    {crew.name}
-                  </TextLink>{" "}
-                  {crew.toDate
-                    ? i18n.t("{from} to {to}", {
-                        from: formatShortDate(crew.fromDate, locale),
-                        to: formatShortDate(crew.toDate, locale),
-                      })
-                    : i18n.t("since {date}", { date: formatShortDate(crew.fromDate, locale) })}
-                  {crew.isLoan && i18n.t(", on loan")}
-                </p>
-              ))}
+            <MarginNote title={i18n.t("Access")}>
+              <p>
+                <TextLink to={paths.workerAccess(worker.id)}>
+                  {i18n.t("Who can see this record")}
+                </TextLink>
+              </p>
             </MarginNote>
+            {/* A visitor's grant shows no crews: that there are none would not be true. */}
+            {(worker.crews.length > 0 || !hasRole(user, "visitor")) && (
+              <MarginNote title={i18n.t("Crews")}>
+                {worker.crews.length === 0 && <p>{i18n.t("In no crew.")}</p>}
+                {worker.crews.map((crew) => (
+                  <p key={`${crew.id} ${crew.fromDate}`}>
+                    <TextLink className="is-quiet is-name" to={paths.crew(crew.id)}>
+                      {crew.name}
+                    </TextLink>{" "}
+                    {crew.toDate
+                      ? i18n.t("{from} to {to}", {
+                          from: formatShortDate(crew.fromDate, locale),
+                          to: formatShortDate(crew.toDate, locale),
+                        })
+                      : i18n.t("since {date}", { date: formatShortDate(crew.fromDate, locale) })}
+                    {crew.isLoan && i18n.t(", on loan")}
+                  </p>
+                ))}
+              </MarginNote>
+            )}
             {hasRequirement && (
               <MarginNote title={i18n.t("Personal requirement")} isRuled>
                 {worker.mustWear && <p>{i18n.t("Must wear a protector whatever the level.")}</p>}
@@ -255,6 +265,15 @@ function Protectors({ worker, today }: { worker: WorkerView; today: string }) {
       document.getElementById(hash.slice(1))?.scrollIntoView();
   }, [hash]);
   const [innerModelId, outerModelId] = (asked ?? "").split(",").filter(Boolean);
+  // Assigned or left, the form goes away with the focus on it: the keyboard goes on at what opened it.
+  const place = useRef<HTMLDivElement>(null);
+  const isOpen = asked !== null;
+  const wasOpen = useRef(isOpen);
+  useEffect(() => {
+    if (wasOpen.current && !isOpen)
+      place.current?.querySelector<HTMLElement>(".after-table .button")?.focus();
+    wasOpen.current = isOpen;
+  }, [isOpen]);
   const close = () =>
     setSearch(
       (before) => {
@@ -269,33 +288,35 @@ function Protectors({ worker, today }: { worker: WorkerView; today: string }) {
     setSearch({ assign: "", ...(use ? { use } : {}) }, { replace: true });
   return (
     <Section title={i18n.t("Protectors by use")} id="protectors">
-      <AssignmentsTable
-        rows={worker.assignments}
-        today={today}
-        canAssign={worker.can.assign}
-        onChange={(assignment) => open(assignedUse(assignment))}
-      />
-      {worker.can.assign &&
-        (asked === null ? (
-          <p className="after-table">
-            <Button onClick={() => open()}>{i18n.t("Assign a protector")}</Button>{" "}
-            {worker.assignments.length > 0 && (
-              <ButtonLink to={paths.slips([worker.id])}>{i18n.t("Print the slip")}</ButtonLink>
-            )}
-          </p>
-        ) : (
-          <div className="inset-form">
-            <AssignForm
-              key={`${asked} ${search.get("use")}`}
-              workerId={worker.id}
-              siteId={worker.siteId}
-              today={today}
-              start={{ use: search.get("use") ?? undefined, innerModelId, outerModelId }}
-              onDone={close}
-              onCancel={close}
-            />
-          </div>
-        ))}
+      <div ref={place}>
+        <AssignmentsTable
+          rows={worker.assignments}
+          today={today}
+          canAssign={worker.can.assign}
+          onChange={(assignment) => open(assignedUse(assignment))}
+        />
+        {worker.can.assign &&
+          (asked === null ? (
+            <p className="after-table">
+              <Button onClick={() => open()}>{i18n.t("Assign a protector")}</Button>{" "}
+              {worker.assignments.length > 0 && (
+                <ButtonLink to={paths.slips([worker.id])}>{i18n.t("Print the slip")}</ButtonLink>
+              )}
+            </p>
+          ) : (
+            <div className="inset-form">
+              <AssignForm
+                key={`${asked} ${search.get("use")}`}
+                workerId={worker.id}
+                siteId={worker.siteId}
+                today={today}
+                start={{ use: search.get("use") ?? undefined, innerModelId, outerModelId }}
+                onDone={close}
+                onCancel={close}
+              />
+            </div>
+          ))}
+      </div>
     </Section>
   );
 }

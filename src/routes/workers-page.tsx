@@ -23,7 +23,9 @@ export function Component() {
   const siteId = user.sites.find(({ id }) => id === search.get("site"))?.id;
   const crewId = search.get("crew") ?? undefined;
   const includeLeft = search.get("left") === "true";
-  const crews = useQuery(crewQueries.list());
+  /** Crews and the trainings' page are the office's; a visitor reads what of them belongs to a worker's year. */
+  const isOffice = hasRole(user, "officer", "auditor");
+  const crews = useQuery({ ...crewQueries.list(), enabled: isOffice });
   const list = useInfiniteQuery({
     ...workerQueries.list({ search: asked, siteId, crewId, includeLeft }),
     placeholderData: keepPreviousData,
@@ -64,7 +66,7 @@ export function Component() {
                   <ButtonLink to={paths.roster}>{i18n.t("Roster from a file")}</ButtonLink>
                 </>
               )}
-              <ButtonLink to={paths.trainings}>{i18n.t("Training")}</ButtonLink>
+              {isOffice && <ButtonLink to={paths.trainings}>{i18n.t("Training")}</ButtonLink>}
             </>
           }
         />
@@ -88,15 +90,17 @@ export function Component() {
               ]}
             />
           )}
-          <FilterSelect
-            label={i18n.t("Crew")}
-            value={crewId ?? ""}
-            onChange={(value) => narrow("crew", value)}
-            choices={[
-              { value: "", label: i18n.t("Any crew") },
-              ...choices.map(({ id, name }) => ({ value: id, label: name })),
-            ]}
-          />
+          {isOffice && (
+            <FilterSelect
+              label={i18n.t("Crew")}
+              value={crewId ?? ""}
+              onChange={(value) => narrow("crew", value)}
+              choices={[
+                { value: "", label: i18n.t("Any crew") },
+                ...choices.map(({ id, name }) => ({ value: id, label: name })),
+              ]}
+            />
+          )}
           <FilterCheck
             label={i18n.t("also those who left")}
             isChecked={includeLeft}

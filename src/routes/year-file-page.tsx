@@ -14,8 +14,9 @@ import { TextLink } from "../components/link";
 import { Folio, MarginNote, PageBody, PageHead } from "../components/page";
 import { Status } from "../components/status";
 import type { StripFrame } from "../components/strip-of-day";
-import { useUser } from "../features/session/session";
+import { hasRole, useUser } from "../features/session/session";
 import { ColumnsTable } from "../features/year-file/columns-table";
+import { DrawsSection } from "../features/year-file/draws-section";
 import { GapsTable } from "../features/year-file/gaps-table";
 import { MonthsList } from "../features/year-file/months-list";
 import { MonthsTable } from "../features/year-file/months-table";
@@ -83,11 +84,14 @@ function YearFile({
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  const { sites } = useUser();
+  const user = useUser();
+  const { sites, visits } = user;
   const [search, setSearch] = useSearchParams();
   const today = localDateOf(new Date().toISOString(), site.timeZone);
   const asked = Number(search.get("year"));
-  const year = Number.isInteger(asked) && asked > 1900 ? asked : Number(today.slice(0, 4));
+  const visited = visits.find(({ siteId }) => siteId === site.id)?.year;
+  const year =
+    Number.isInteger(asked) && asked > 1900 ? asked : (visited ?? Number(today.slice(0, 4)));
   const workers = WORKERS_AS.find((one) => one === search.get("workers")) ?? "number";
   const yearOfSite = { siteId: site.id, year };
   const gaps = useQuery(yearFileQueries.gaps(yearOfSite));
@@ -178,6 +182,13 @@ function YearFile({
             year={yearOfSite}
             counts={gaps.data?.counts}
             caption={i18n.t("What is missing")}
+          />
+        )}
+        {hasRole(user, "auditor", "officer") && gaps.data && gaps.data.months.length > 0 && (
+          <DrawsSection
+            year={yearOfSite}
+            mayDraw={hasRole(user, "auditor")}
+            timeZone={site.timeZone}
           />
         )}
         <div className="filter-row year-choice">

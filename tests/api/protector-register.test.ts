@@ -384,6 +384,7 @@ test("a model's whole data come back as they were given", async () => {
   const data = {
     percentile: { mostDb: 22, fewDb: 30 },
     usLabel: { meanDb: Array(9).fill(28), sdDb: Array(9).fill(2.4) },
+    bands: { meanDb: same(25), sdDb: same(2) },
     subjectsDb: [same(24), same(27), [null, 25, 25, 26, 27, 30, 31, 30]],
     sizes: ["S", "M", "L"],
     worksWith: { helmet: true, glasses: false, respirator: null },

@@ -1,5 +1,6 @@
-import { expect, test } from "vitest";
+import { describe, expect, test } from "vitest";
 import { recomputeStaleDays } from "../../server/jobs/recompute-stale-days";
+import { wearingSeen } from "../../server/queries/own-attenuation";
 import {
   buildArea,
   buildAssignment,
@@ -12,6 +13,7 @@ import {
   buildWorker,
   daysFromToday,
   insert,
+  owner,
   type Site,
   select,
   signInAs,
@@ -197,6 +199,17 @@ describeEndpoint({
   }),
 });
 describeEndpoint({
+  route: "GET /workers/:id/own-reports",
+  as: "officer",
+  not: "supervisor",
+  event: null,
+  bad: { path: "?from=today" },
+  call: async (site) => ({
+    method: "get",
+    path: `/workers/${(await buildWorker({ site })).id}/own-reports?from=${daysFromToday(-5)}`,
+  }),
+});
+describeEndpoint({
   route: "GET /wearing-rounds",
   as: "auditor",
   not: "worker",
@@ -374,6 +387,191 @@ test("a worker says for themselves how long it was worn, and nothing of anybody 
     [organizationId],
   );
   expect(look).toEqual({ source: "own-report", workerId: own.id });
+});
+
+describe("what a worker says anew of the same day and task", () => {
+  async function saidTwice() {
+    const site = await buildSite();
+    const { organizationId } = site;
+    const own = await buildWorker({ site });
+    const [task, other] = [
+      await buildTask({ site, levelDb: 95 }),
+      await buildTask({ site, levelDb: 95 }),
+    ];
+    const worker = await signInAs(
+      await buildUser({ organizationId, roles: ["worker"], workerId: own.id }),
+    );
+    const date = daysFromToday(-1);
+    const say = async (answers: [string, number][], note = "") =>
+      worker.post("/wearing-rounds", {
+        siteId: site.id,
+        seenOn: date,
+        source: "own-report",
+        note,
+        looks: answers.map(([taskId, wornCount]) => ({
+          workerId: own.id,
+          taskId,
+          wornCount,
+          seenCount: 4,
+        })),
+      });
+    const first = await say([
+      [task.id, 1],
+      [other.id, 4],
+    ]);
+    expect(first.status).toBe(201);
+    const standing = async () =>
+      (await worker.get(`/workers/${own.id}/own-reports?from=${daysFromToday(-3)}`)).body.rows;
+    const seen = async (taskId: string) => {
+      const [found] = await select<{ seen: [number, number] }>(
+        `SELECT ${wearingSeen("$1::uuid", "$2::uuid", "$3::date")} AS seen`,
+        [own.id, taskId, daysFromToday(0)],
+      );
+      return found?.seen;
+    };
+    return { site, own, task, other, worker, say, first, standing, seen };
+  }
+
+  test("a share that the shift leaves blank names the reports and rounds that it comes from", async () => {
+    const { site, own, task, other, say, worker } = await saidTwice();
+    const { organizationId } = site;
+    await say([[task.id, 3]]);
+    const officer = await signInAs(await buildUser({ organizationId, roles: ["officer"] }));
+    const round = await officer.post("/wearing-rounds", {
+      siteId: site.id,
+      seenOn: daysFromToday(-2),
+      looks: [{ workerId: own.id, taskId: task.id, wornCount: 9, seenCount: 10 }],
+    });
+    expect(round.status).toBe(201);
+    const model = await buildProtector({ organizationId });
+    await buildAssignment({ worker: own, inner: model });
+    const date = daysFromToday(-1);
+    const crew = await buildCrew({ site, members: [own] });
+    const saved = await officer.post(`/crews/${crew.id}/day`, {
+      date,
+      rows: [
+        {
+          kind: "worked",
+          workerId: own.id,
+          localStart: "06:00",
+          lengthMin: 120,
+          tasks: [
+            { taskId: task.id, durationMin: 60 },
+            { taskId: other.id, durationMin: 60, wornPct: 80 },
+          ],
+        },
+      ],
+    });
+    expect(saved.status).toBe(201);
+    await recomputeStaleDays(organizationId);
+    const { body } = await worker.get(`/workers/${own.id}/days/${date}`);
+    const [first, second] = body.input.shifts[0].tasks;
+    expect(first).toMatchObject({
+      wornPct: (100 * 12) / 14,
+      wornFrom: {
+        how: "looks",
+        looks: [
+          {
+            source: "round",
+            roundId: round.body.id,
+            lastOn: daysFromToday(-2),
+            roundCount: 1,
+            wornCount: 9,
+            seenCount: 10,
+          },
+          { source: "own-report", lastOn: date, roundCount: 1, wornCount: 3, seenCount: 4 },
+        ],
+      },
+    });
+    expect(second.wornFrom).toEqual({ how: "stated" });
+    expect(body.sources[round.body.id]).toEqual({ label: expect.any(String), note: null });
+  });
+
+  test("takes the place of what was said before, which stays on record with its event", async () => {
+    const { site, task, other, say, first, standing, seen } = await saidTwice();
+    expect(await seen(task.id)).toEqual([1, 4]);
+    const second = await say([[task.id, 3]], "it was the hot day");
+    expect(second.status).toBe(201);
+    expect(await seen(task.id)).toEqual([3, 4]);
+    expect(await seen(other.id)).toEqual([4, 4]);
+    const rows = await standing();
+    expect(rows).toHaveLength(2);
+    expect(rows).toContainEqual(
+      expect.objectContaining({
+        taskId: task.id,
+        wornCount: 3,
+        note: "it was the hot day",
+        isByWorker: true,
+        canChange: true,
+        changeableUntil: daysFromToday(14),
+      }),
+    );
+    const officer = await signInAs(
+      await buildUser({ organizationId: site.organizationId, roles: ["officer"] }),
+    );
+    const rounds = (await officer.get("/wearing-rounds")).body.rows as {
+      id: string;
+      looks: { taskId: string; isReplaced: boolean }[];
+    }[];
+    const looks = rounds.find(({ id }) => id === first.body.id)?.looks ?? [];
+    expect(looks).toHaveLength(2);
+    expect(looks.filter(({ isReplaced }) => isReplaced)).toMatchObject([{ taskId: task.id }]);
+    const events = await select<{ subjectId: string }>(
+      `SELECT subject_id AS "subjectId" FROM audit_events WHERE organization_id = $1 AND action = 'replace-own-report'`,
+      [site.organizationId],
+    );
+    expect(events).toEqual([{ subjectId: first.body.id }]);
+    // Struck by the officer, it gives its place back.
+    const struck = await officer.send({
+      method: "post",
+      path: `/wearing-rounds/${second.body.id}/strike`,
+      body: { reason: "said of another day" },
+      revision: second.body.revision,
+    });
+    expect(struck.status).toBe(200);
+    expect(await seen(task.id)).toEqual([1, 4]);
+  });
+
+  test("is refused once the first was said more than two weeks ago, at the task that it is about", async () => {
+    const { site, own, task, say, first, standing } = await saidTwice();
+    await owner().query(
+      "UPDATE wearing_rounds SET created_at = now() - interval '20 days' WHERE id = $1",
+      [first.body.id],
+    );
+    expect(await standing()).toMatchObject([{ canChange: false }, { canChange: false }]);
+    const late = await say([[task.id, 3]]);
+    expect(late.status).toBe(422);
+    expect(late.body.issues).toMatchObject([
+      { path: ["looks", 0, "taskId"], code: "said-long-ago", params: { days: 14 } },
+    ]);
+    const officer = await signInAs(
+      await buildUser({ organizationId: site.organizationId, roles: ["officer"] }),
+    );
+    const told = await officer.post("/wearing-rounds", {
+      siteId: site.id,
+      seenOn: daysFromToday(-1),
+      source: "own-report",
+      looks: [{ workerId: own.id, taskId: task.id, wornCount: 2, seenCount: 4 }],
+    });
+    expect(told.status).toBe(201);
+    expect(await standing()).toContainEqual(
+      expect.objectContaining({ taskId: task.id, wornCount: 2, isByWorker: false }),
+    );
+  });
+
+  test("is nobody else's to read among workers", async () => {
+    const { site, own } = await saidTwice();
+    const other = await buildWorker({ site });
+    const stranger = await signInAs(
+      await buildUser({
+        organizationId: site.organizationId,
+        roles: ["worker"],
+        workerId: other.id,
+      }),
+    );
+    const answer = await stranger.get(`/workers/${own.id}/own-reports?from=${daysFromToday(-3)}`);
+    expect(answer.status).toBe(404);
+  });
 });
 
 test("somebody on loan from another site is seen in the crew that they work in, in the tasks of its site", async () => {

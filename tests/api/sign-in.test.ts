@@ -6,6 +6,7 @@ import {
   buildSite,
   buildUser,
   buildWorker,
+  insert,
   select,
   signInAs,
   testApp,
@@ -117,8 +118,76 @@ describe("sign-in", () => {
       const visitor = new Visitor();
       const { url } = await visitor.signIn(signInAddress(), sub);
       expect(url.pathname).toBe("/no-access");
-      expect(await session(visitor)).toEqual({ user: null, pendingName: name });
+      expect(await session(visitor)).toEqual({ user: null, pendingName: name, endedAt: null });
     }
+  });
+
+  test("a visitor whose time is over is told when it ended, and comes in again once it is granted anew", async () => {
+    const { email, sub, name } = person();
+    const site = await buildSite();
+    const user = await buildUser({ organizationId: site.organizationId, email });
+    const at = (minutes: number) => new Date(Date.now() + minutes * 60_000);
+    const endsAt = at(-5);
+    await insert("role_grants", {
+      organizationId: site.organizationId,
+      userId: user.id,
+      role: "auditor",
+      siteId: site.id,
+      year: 2025,
+      grantedAt: at(-60),
+      endsAt,
+    });
+    const visitor = new Visitor();
+    expect((await visitor.signIn(signInAddress(), sub)).url.pathname).toBe("/no-access");
+    expect(await session(visitor)).toEqual({
+      user: null,
+      pendingName: name,
+      endedAt: endsAt.toISOString(),
+    });
+    await select("UPDATE role_grants SET ends_at = now() + interval '1 hour' WHERE user_id = $1", [
+      user.id,
+    ]);
+    const again = new Visitor();
+    expect((await again.signIn(signInAddress(), sub)).url.pathname).toBe("/findings");
+    expect((await session(again)).user).toMatchObject({
+      roles: ["visitor"],
+      visits: [{ siteId: site.id, year: 2025 }],
+    });
+  });
+
+  test("a group that the provider states lets somebody in, and no longer in it, not", async () => {
+    const site = await buildSite();
+    const { organizationId } = site;
+    const author = await buildUser({ organizationId, roles: ["administrator"] });
+    const groupName = `Readers ${Date.now()}`;
+    const map = (inOrganization: string, authorId: string) =>
+      insert("group_mappings", {
+        organizationId: inOrganization,
+        groupName,
+        role: "auditor",
+        authorId,
+      });
+    await map(organizationId, author.id);
+    const member = person({ groups: ["Canteen", groupName] });
+    const visitor = new Visitor();
+    expect((await visitor.signIn(signInAddress(), member.sub)).url.pathname).toBe("/findings");
+    expect((await session(visitor)).user).toMatchObject({
+      name: member.name,
+      email: member.email,
+      roles: ["auditor"],
+      sites: [{ id: site.id }],
+    });
+    addPeople(peopleFolder, [{ ...member, groups: ["Canteen"] }], member.sub);
+    const later = new Visitor();
+    expect((await later.signIn(signInAddress(), member.sub)).url.pathname).toBe("/no-access");
+    // What a group gave ends in the open session too.
+    expect((await session(visitor)).user).toBeNull();
+    // Two organizations that know the group: nobody says which of them it is.
+    const foreign = await buildUser({ roles: ["administrator"] });
+    await map(foreign.organizationId, foreign.id);
+    const unclear = person({ groups: [groupName] });
+    const third = new Visitor();
+    expect((await third.signIn(signInAddress(), unclear.sub)).url.pathname).toBe("/no-access");
   });
 
   test("an e-mail that has been bound to one subject opens to no other", async () => {

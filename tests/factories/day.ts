@@ -12,6 +12,8 @@ interface DayOverrides {
   criteria?: readonly object[];
   /** Imported ones have no inputs. */
   origin?: "computed" | "imported";
+  /** What it rests on. */
+  refs?: object;
 }
 
 /** A judged day of a worker with its current result, without the shift it would rest on. */
@@ -47,7 +49,7 @@ export async function buildDay(
     refs: JSON.stringify(
       overrides.origin === "imported"
         ? { governing: [overrides.governingRuleSet ?? "eu-2003-10-ec", 1], comparison: [] }
-        : {},
+        : (overrides.refs ?? {}),
     ),
   });
   await insert("days", {

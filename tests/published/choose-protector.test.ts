@@ -98,7 +98,7 @@ describe("the order, one comparison after the other", () => {
     ]);
     expect(order([offer("a", { snrDb: 37 }), offer("b", { snrDb: 32 })], wearer(100))).toEqual([
       ["b", "first"],
-      ["a", "margin"],
+      ["a", "least-margin"],
     ]);
     expect(order([offer("a", { snrDb: 22.2 }), offer("b", { snrDb: 22.7 })], wearer(100))).toEqual([
       ["b", "first"],
@@ -362,8 +362,26 @@ describe("a rule that has no word for too much: EN 458's stands beside it", () =
       ["r31", "enough", "strong-side", "first"],
       ["r24", "enough", "good", "margin"],
       ["r33", "enough", "too-much", "overprotection"],
-      ["r35", "enough", "too-much", "margin"],
+      ["r35", "enough", "too-much", "least-margin"],
     ]);
+  });
+
+  test("the label's number less 7 stands beside where Appendix B governs, and nowhere else", () => {
+    const beside = (rule: typeof US) =>
+      new ProtectorChoice(
+        [offer("r24", { usRatingDb: 24 }), offer("r5", { usRatingDb: 5 })],
+        rule.protection,
+        US_LAW,
+      )
+        .for({ ...wearer(95), noises })
+        .map(({ modelId, labelLess7Db }) => [modelId, labelLess7Db]);
+    expect(beside(US).toSorted()).toEqual([
+      ["r24", 17],
+      ["r5", 0],
+    ]);
+    expect(
+      beside({ ...US, protection: { ...US.protection, adequacy: "en-458" } }).map(([, db]) => db),
+    ).toEqual([null, null]);
   });
 
   // 104 dB for an hour: the US number less 7 leaves 86 with 25, which EN 458 calls too little over 85; with 31 80.

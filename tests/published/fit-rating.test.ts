@@ -56,6 +56,7 @@ describe("by ear: mean less z·√(s²/n + u²), one-sided (computed by hand; z 
 test.each([
   [16, true],
   [16.97, false],
+  [0, null],
   [null, null],
 ])("against a need of %s dB: %s", (needDb, hasPassed) => {
   expect(rated({ needDb })).toMatchObject({ hasPassed });

@@ -10,6 +10,7 @@ import {
   type Secrets,
 } from "../../scripts/lib/environment.mjs";
 import { findFreePort, randomPort } from "../../scripts/lib/ports.mjs";
+import type { Locale } from "../../shared/i18n";
 import { type RunningProcess, startProcess, waitFor } from "./processes";
 
 /** Someone the local provider knows. */
@@ -19,7 +20,8 @@ export interface Person {
   emailVerified: boolean;
   name: string;
   roles: string[];
-  language: "en" | "de";
+  groups?: string[];
+  language: Locale;
 }
 
 export interface Mail {

@@ -11,7 +11,7 @@ import { FormProblem } from "../../components/form-problem";
 import { useLocale } from "../../lib/i18n";
 import { useTypedText } from "../../lib/keep-typed";
 import { tooManyText } from "../../lib/too-many";
-import { useSendStep } from "./order-actions";
+import { keptWords, useSendStep } from "./order-actions";
 import { crewSheetQueries, type SheetOrder } from "./queries";
 import { StaleOrder } from "./stale-order";
 
@@ -108,13 +108,13 @@ function Question({
   const finding = useQuery(crewSheetQueries.order(order.findingId));
   // Whoever reads the thread has seen its revision; the sheet may be older.
   const seen = { ...order, revision: finding.data?.revision ?? order.revision };
-  const { send, forget, asked, current, isBusy, error } = useSendStep(crewId, seen);
+  const { send, forget, asked, current, isBusy, error } = useSendStep(crewId, seen, worker.name);
   const [text, setText] = useTypedText(`question ${order.findingId}`);
   const [isEmpty, setIsEmpty] = useState(false);
   const [said, setSaid] = useState("");
-  const sent = () => {
+  const sent = (isKept: boolean) => {
     setText("");
-    setSaid(i18n.t("Your question is with the officer."));
+    setSaid(isKept ? keptWords(i18n) : i18n.t("Your question is with the officer."));
   };
 
   function submit(event: FormEvent) {

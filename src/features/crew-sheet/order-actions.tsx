@@ -1,14 +1,18 @@
+import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { type FormEvent, type ReactNode, useId, useState } from "react";
 import { findingStateWord } from "../../../shared/findings/words";
 import { Button } from "../../components/button";
 import { FormProblem } from "../../components/form-problem";
 import { TextButton } from "../../components/link";
+import { ApiError, isUnreached } from "../../lib/api";
 import { useChangeKey } from "../../lib/change-key";
+import { keptActsOf, useKeptActs } from "../../lib/kept-acts";
 import { useTypedText } from "../../lib/keep-typed";
 import { useMoveFocus } from "../../lib/move-focus";
 import { savedMeanwhile } from "../../lib/stale";
 import { tooManyText } from "../../lib/too-many";
+import { useUser } from "../session/session";
 import { findingReply, type OrderStep, type SheetOrder, useOrderStep } from "./queries";
 import { StaleOrder } from "./stale-order";
 
@@ -16,23 +20,55 @@ import { StaleOrder } from "./stale-order";
 const SHORTEST_REASON = 3;
 const LONGEST_REASON = 2000;
 
-/** Sends steps on an order, asks where somebody was quicker, and says what went wrong in its place. */
-export function useSendStep(crewId: string, order: Pick<SheetOrder, "findingId" | "revision">) {
+/** It waits on this device for a connection, or for the same person to sign in again. */
+const isToBeKept = (error: unknown): boolean =>
+  isUnreached(error) || (error instanceof ApiError && error.status === 401);
+
+/**
+ * Sends steps on an order, asks where somebody was quicker, and says what went wrong in its place. What can't be sent now
+ * is kept; `onSent` is told which of both it was.
+ */
+export function useSendStep(
+  crewId: string,
+  order: Pick<SheetOrder, "findingId" | "revision">,
+  workerName: string,
+) {
+  const acts = keptActsOf(useUser().id);
   const { keyFor, forget: forgetKey } = useChangeKey();
   const change = useOrderStep(crewId, order.findingId);
   const [asked, setAsked] = useState<OrderStep | null>(null);
   const current = asked ? savedMeanwhile(change.error, findingReply) : null;
 
-  const send = (step: OrderStep, onSent: () => void, revision = order.revision) => {
+  const send = (
+    step: OrderStep,
+    onSent: (isKept: boolean) => void,
+    revision = order.revision,
+  ) => {
     setAsked(step);
+    const { findingId } = order;
+    const { key } = acts.hold({
+      key: keyFor({ step, revision }),
+      path: `/findings/${findingId}/steps`,
+      body: step,
+      revision,
+      words: { kind: step.kind, findingId, workerName, text: step.text },
+    });
     change.mutate(
-      { step, revision, idempotencyKey: keyFor({ step, revision }) },
+      { step, revision, idempotencyKey: key },
       {
         onSuccess: () => {
           forgetKey();
           setAsked(null);
-          onSent();
+          onSent(false);
         },
+        onError: (error) => {
+          if (!isToBeKept(error)) return;
+          forgetKey();
+          setAsked(null);
+          change.reset();
+          onSent(true);
+        },
+        onSettled: (_, error) => acts.release(key, isToBeKept(error)),
       },
     );
   };
@@ -49,6 +85,9 @@ export function useSendStep(crewId: string, order: Pick<SheetOrder, "findingId" 
     error: current ? null : change.error,
   };
 }
+
+export const keptWords = (i18n: I18n): string =>
+  i18n.t("Kept on this device. It is sent as soon as there is a connection.");
 
 /** Mark done, large enough for a hand in a glove, and Can’t, because… beneath it. */
 export function OrderActions({
@@ -70,7 +109,12 @@ export function OrderActions({
   noticed: ReactNode;
 }) {
   const { i18n } = useLingui();
-  const { send, forget, asked, current, isBusy, error } = useSendStep(crewId, order);
+  const { send, forget, asked, current, isBusy, error } = useSendStep(crewId, order, workerName);
+  const kept = useKeptActs(useUser().id).find(
+    ({ words: act }) =>
+      act.kind !== "round" && act.kind !== "comment" && act.findingId === order.findingId,
+  );
+  const canStep = order.canMarkDone && !kept;
   const [text, setText] = useTypedText(`cannot ${order.findingId}`);
   const [isRefusing, setIsRefusing] = useState(text !== "");
   const [isTooShort, setIsTooShort] = useState(false);
@@ -88,10 +132,10 @@ export function OrderActions({
       document.getElementById(`${id}-reason`)?.focus();
       return;
     }
-    send({ kind: "cannot", text: reason }, () => {
+    send({ kind: "cannot", text: reason }, (isKept) => {
       setIsRefusing(false);
       setText("");
-      setSaid(i18n.t("Your reason is with the officer."));
+      setSaid(isKept ? keptWords(i18n) : i18n.t("Your reason is with the officer."));
       toCannot();
     });
   }
@@ -111,15 +155,15 @@ export function OrderActions({
     <div ref={place} className="contents">
       <div className="sheet-order">
         <div className="sheet-order-words">{words}</div>
-        {order.canMarkDone ? (
+        {canStep ? (
           <Button
             kind="big"
             size="supervisor"
             isBusy={isBusy && asked?.kind === "mark-done"}
             aria-label={i18n.t("Mark done: {name}", { name: workerName })}
             onClick={() =>
-              send({ kind: "mark-done", text: "" }, () => {
-                setSaid(i18n.t("The officer checks it."));
+              send({ kind: "mark-done", text: "" }, (isKept) => {
+                setSaid(isKept ? keptWords(i18n) : i18n.t("The officer checks it."));
                 toState();
               })
             }
@@ -128,12 +172,16 @@ export function OrderActions({
           </Button>
         ) : (
           <span className="sheet-state" data-order-state tabIndex={-1}>
-            {findingStateWord(i18n, order.state)}
+            {kept
+              ? kept.words.kind === "mark-done"
+                ? i18n.t("Done, not sent yet")
+                : i18n.t("Can’t, not sent yet")
+              : findingStateWord(i18n, order.state)}
           </span>
         )}
       </div>
       <p className="sheet-noticed">{noticed}</p>
-      {order.canMarkDone && !isRefusing && (
+      {canStep && !isRefusing && (
         <TextButton
           className="sheet-cannot"
           data-cannot

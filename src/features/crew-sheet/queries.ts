@@ -3,6 +3,7 @@ import type { z } from "zod";
 import type { CrewList, CrewSheetRow, CrewSheetView } from "../../../shared/schemas/crew";
 import type { FindingStepInput, FindingView } from "../../../shared/schemas/finding";
 import { api } from "../../lib/api";
+import { orLastSeen } from "../../lib/last-seen";
 import { ownReply } from "../../lib/own-reply";
 
 export const findingReply = ownReply<FindingView>("id", "state", "steps", "revision", "can");
@@ -12,17 +13,23 @@ export const crewSheetQueries = {
   crews: queryOptions({
     queryKey: ["crew-sheet", "crews"],
     queryFn: ({ signal }) =>
-      api.get("/crews", { schema: ownReply<z.infer<typeof CrewList>>("rows"), signal }),
+      orLastSeen("crews", () =>
+        api.get("/crews", { schema: ownReply<z.infer<typeof CrewList>>("rows"), signal }),
+      ),
+    networkMode: "always",
     select: ({ rows }) => rows.filter(({ isArchived }) => !isArchived),
   }),
   sheet: (crewId: string) =>
     queryOptions({
       queryKey: ["crew-sheet", "of", crewId],
       queryFn: ({ signal }) =>
-        api.get(`/crews/${crewId}/sheet`, {
-          schema: ownReply<CrewSheetView>("crew", "crews", "expected", "last"),
-          signal,
-        }),
+        orLastSeen(`sheet ${crewId}`, () =>
+          api.get(`/crews/${crewId}/sheet`, {
+            schema: ownReply<CrewSheetView>("crew", "crews", "expected", "last"),
+            signal,
+          }),
+        ),
+      networkMode: "always",
     }),
   order: (findingId: string) =>
     queryOptions({

@@ -1,7 +1,7 @@
 import { useLingui } from "@lingui/react";
 import { useQueryClient } from "@tanstack/react-query";
 import type { z } from "zod";
-import { LOCALE_NAMES, LOCALES, type Locale } from "../../../shared/i18n/index";
+import { isLocale, LOCALE_NAMES, LOCALES, type Locale } from "../../../shared/i18n/index";
 import { UserChange, UserInput, UserView } from "../../../shared/schemas/user";
 import { ComboboxField } from "../../components/combobox-field";
 import { SelectField, TextField } from "../../components/form";
@@ -19,7 +19,9 @@ const toChange = ({ name, language, workerId, grants }: UserView): Change => ({
   name,
   language: language === "de" ? "de" : "en",
   workerId,
-  grants: grants.map(({ role, siteId }) => ({ role, siteId })),
+  grants: grants
+    .filter(({ endsAt, groupName }) => endsAt === null && groupName === null)
+    .map(({ role, siteId }) => ({ role, siteId })),
 });
 
 interface FormProps {
@@ -52,7 +54,7 @@ export function NewPersonForm({ sites, onSaved, onLeave }: FormProps) {
         email: null,
         expectedSubject: null,
         workerId: null,
-        language: i18n.locale === "de" ? "de" : "en",
+        language: isLocale(i18n.locale) ? i18n.locale : "en",
         grants: [{ role: "worker", siteId: sites.length === 1 ? (sites[0]?.id ?? null) : null }],
       }}
       toBody={({ email, expectedSubject, ...person }) => ({

@@ -1,10 +1,13 @@
 import { queryOptions, useMutation, useQueryClient } from "@tanstack/react-query";
 import type { z } from "zod";
+import type { MappingList, MappingView } from "../../../shared/schemas/group-mapping";
 import type { SiteList } from "../../../shared/schemas/site";
 import type { UserList, UserView } from "../../../shared/schemas/user";
+import type { VisitorList, VisitorView } from "../../../shared/schemas/visitor";
 import type { SignInCodeView, WorkerNameList } from "../../../shared/schemas/worker";
 import type { Choice } from "../../components/form";
-import { api } from "../../lib/api";
+import { api, newChangeKey } from "../../lib/api";
+import { useOneAtATime } from "../../lib/one-at-a-time";
 import { ownReply } from "../../lib/own-reply";
 
 export const peopleQueries = {
@@ -13,6 +16,18 @@ export const peopleQueries = {
     queryKey: ["people", "list"],
     queryFn: ({ signal }) =>
       api.get("/users", { schema: ownReply<z.infer<typeof UserList>>("rows"), signal }),
+    select: ({ rows }) => rows,
+  }),
+  visitors: queryOptions({
+    queryKey: ["people", "visitors"],
+    queryFn: ({ signal }) =>
+      api.get("/visitors", { schema: ownReply<z.infer<typeof VisitorList>>("rows"), signal }),
+    select: ({ rows }) => rows,
+  }),
+  groups: queryOptions({
+    queryKey: ["people", "groups"],
+    queryFn: ({ signal }) =>
+      api.get("/group-mappings", { schema: ownReply<z.infer<typeof MappingList>>("rows"), signal }),
     select: ({ rows }) => rows,
   }),
   sites: queryOptions({
@@ -54,6 +69,44 @@ export function useEndAccess(id: string, onEnded: () => void) {
     onSuccess: onEnded,
     onSettled: () => client.invalidateQueries({ queryKey: peopleQueries.all }),
   });
+}
+
+export function useEndVisit(id: string, onEnded: () => void) {
+  const client = useQueryClient();
+  const { begin, end } = useOneAtATime();
+  const change = useMutation({
+    mutationFn: () =>
+      api.post(`/visitors/${id}/end`, {
+        body: {},
+        schema: ownReply<VisitorView>("id", "endsAt"),
+        idempotencyKey: newChangeKey(),
+      }),
+    onSuccess: onEnded,
+    onSettled: () => {
+      end();
+      return client.invalidateQueries({ queryKey: peopleQueries.all });
+    },
+  });
+  return { ...change, start: () => void (begin() && change.mutate()) };
+}
+
+export function useEndMapping(id: string, onEnded: () => void) {
+  const client = useQueryClient();
+  const { begin, end } = useOneAtATime();
+  const change = useMutation({
+    mutationFn: () =>
+      api.post(`/group-mappings/${id}/end`, {
+        body: {},
+        schema: ownReply<MappingView>("id", "isEnded"),
+        idempotencyKey: newChangeKey(),
+      }),
+    onSuccess: onEnded,
+    onSettled: () => {
+      end();
+      return client.invalidateQueries({ queryKey: peopleQueries.all });
+    },
+  });
+  return { ...change, start: () => void (begin() && change.mutate()) };
 }
 
 export function useIssueCode(workerId: string) {

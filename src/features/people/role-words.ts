@@ -14,8 +14,20 @@ export const ROLES: readonly RoleName[] = [
 /** "Safety officer, Ostmere works". */
 export function grantWords(
   i18n: I18n,
-  { role, siteName }: Pick<UserView["grants"][number], "role" | "siteName">,
+  {
+    role,
+    siteName,
+    year,
+    groupName,
+  }: Pick<UserView["grants"][number], "role" | "siteName"> &
+    Partial<Pick<UserView["grants"][number], "year" | "groupName">>,
 ): string {
+  if (year) return i18n.t("Visitor, {site}, {year}", { site: siteName ?? "", year: String(year) });
+  if (groupName)
+    return i18n.t("{grant}, by group {group}", {
+      grant: grantWords(i18n, { role, siteName }),
+      group: groupName,
+    });
   return siteName === null
     ? i18n.t("{role}, all sites", { role: roleWord(i18n, role) })
     : i18n.t("{role}, {site}", { role: roleWord(i18n, role), site: siteName });

@@ -1,9 +1,11 @@
 import { queryOptions, useQuery } from "@tanstack/react-query";
 import type { Locale } from "../../../shared/i18n/index";
-import type { RoleName, SessionUser, SessionView } from "../../../shared/schemas/session";
-import { api, noReply } from "../../lib/api";
+import type { SessionRole, SessionUser, SessionView } from "../../../shared/schemas/session";
+import { api, isUnreached, noReply } from "../../lib/api";
 import { rememberChoice } from "../../lib/i18n";
 import { forgetTyped } from "../../lib/keep-typed";
+import { forgetKept } from "../../lib/kept-list";
+import { keepSeenFor } from "../../lib/last-seen";
 
 const isSession = (value: unknown): value is SessionView =>
   typeof value === "object" && value !== null && "user" in value && "pendingName" in value;
@@ -16,11 +18,51 @@ const sessionReply = {
   },
 };
 
+const HERE = "dinward.here";
+
+/** Whoever has a crew works without a connection too; this device remembers them until they sign out or are signed out. */
+function rememberWhoIsHere(session: Pick<SessionView, "user">): void {
+  const { user } = session;
+  const isKept = user !== null && hasRole(user, "supervisor", "officer");
+  keepSeenFor(isKept ? user.id : null);
+  try {
+    if (isKept) localStorage.setItem(HERE, JSON.stringify(session));
+    else localStorage.removeItem(HERE);
+  } catch {
+    // A browser without storage: without a connection there is then no page.
+  }
+}
+
+function whoWasHere(): SessionView | null {
+  try {
+    return sessionReply.parse(JSON.parse(localStorage.getItem(HERE) ?? "null"));
+  } catch {
+    return null;
+  }
+}
+
+async function askWhoIsHere(signal: AbortSignal): Promise<SessionView> {
+  try {
+    const session = await api.get("/session", {
+      schema: sessionReply,
+      signal,
+      asksWhoIsThere: true,
+    });
+    rememberWhoIsHere(session);
+    return session;
+  } catch (error) {
+    const last = isUnreached(error) ? whoWasHere() : null;
+    if (!last) throw error;
+    keepSeenFor(last.user?.id ?? null);
+    return last;
+  }
+}
+
 export const sessionQuery = queryOptions({
   queryKey: ["session"],
-  queryFn: ({ signal }) =>
-    api.get("/session", { schema: sessionReply, signal, asksWhoIsThere: true }),
+  queryFn: ({ signal }) => askWhoIsHere(signal),
   staleTime: 60_000,
+  networkMode: "always",
 });
 
 /** Whoever is signed in. Pages inside the signed-in part always have somebody. */
@@ -30,14 +72,17 @@ export function useUser(): SessionUser {
   return data.user;
 }
 
-export const hasRole = (user: Pick<SessionUser, "roles">, ...roles: RoleName[]): boolean =>
+export const hasRole = (user: Pick<SessionUser, "roles">, ...roles: SessionRole[]): boolean =>
   user.roles.some((role) => roles.includes(role));
 
-export async function signOut(): Promise<void> {
+/** Ends the session; what this device kept of the user goes with it. */
+export async function signOut(userId?: string): Promise<void> {
   const { redirectTo } = await api.post("/auth/sign-out", {
     schema: { parse: (value) => value as { redirectTo: string } },
   });
   forgetTyped();
+  if (userId !== undefined) forgetKept(localStorage, userId);
+  rememberWhoIsHere({ user: null });
   window.location.assign(redirectTo);
 }
 

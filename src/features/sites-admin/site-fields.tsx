@@ -1,6 +1,6 @@
 import { useLingui } from "@lingui/react";
 import type { FieldPath, FieldValues, UseFormReturn } from "react-hook-form";
-import { LOCALE_NAMES, LOCALES } from "../../../shared/i18n/index";
+import { LOCALE_NAMES, LOCALES, type Locale } from "../../../shared/i18n/index";
 import { NumberField, SelectField, TextField } from "../../components/form";
 
 const languages = LOCALES.map((value) => ({ value, label: LOCALE_NAMES[value] }));
@@ -15,7 +15,7 @@ const withCurrent = (zone: string) =>
 interface SiteValues extends FieldValues {
   name: string;
   timeZone: string;
-  language?: "en" | "de";
+  language?: Locale;
   noticeDelayMin?: number;
 }
 

@@ -29,6 +29,9 @@ export const SUBJECT_KINDS = [
   "warning-signal",
   "training",
   "plan",
+  "timetable",
+  "group-mapping",
+  "draw",
 ] as const;
 export type SubjectKind = (typeof SUBJECT_KINDS)[number];
 
@@ -41,6 +44,10 @@ export function subjectWord(i18n: I18n, kind: string): string {
       return i18n.t("Person");
     case "site":
       return i18n.t("Site");
+    case "group-mapping":
+      return i18n.t("Role by group");
+    case "draw":
+      return i18n.t("Drawn records");
     case "worker":
       return i18n.t("Worker");
     case "crew":
@@ -91,6 +98,8 @@ export function subjectWord(i18n: I18n, kind: string): string {
       return i18n.t("Training");
     case "plan":
       return i18n.t("Plan");
+    case "timetable":
+      return i18n.t("Timetable");
     default:
       return kind;
   }
@@ -119,6 +128,18 @@ export function actionWord(i18n: I18n, action: string): string {
       return i18n.t("Plan kept");
     case "put-plan-aside":
       return i18n.t("Plan put aside");
+    case "add-plan-step":
+      return i18n.t("Step of a plan entered");
+    case "change-plan-step":
+      return i18n.t("Step of a plan changed");
+    case "mark-plan-step":
+      return i18n.t("Step of a plan marked");
+    case "start-timetable":
+      return i18n.t("Timetable asked for");
+    case "cancel-timetable":
+      return i18n.t("Search for a timetable given up");
+    case "answer-timetable":
+      return i18n.t("Search for a timetable ended");
     case "add-site-settings":
       return i18n.t("Rules changed");
     case "add-task-level":
@@ -135,6 +156,22 @@ export function actionWord(i18n: I18n, action: string): string {
       return i18n.t("Sign-in bound with a code");
     case "issue-sign-in-code":
       return i18n.t("Sign-in code issued");
+    case "make-token":
+      return i18n.t("Token for another system made");
+    case "end-token":
+      return i18n.t("Token for another system ended");
+    case "map-group":
+      return i18n.t("Group given a role");
+    case "end-group-mapping":
+      return i18n.t("Group’s role ended");
+    case "follow-groups":
+      return i18n.t("Roles follow the sign-in service’s groups");
+    case "admit-by-group":
+      return i18n.t("Let in by a group");
+    case "let-visitor-in":
+      return i18n.t("Visitor let in");
+    case "end-visit":
+      return i18n.t("Visit ended");
     case "revoke-user":
       return i18n.t("Access ended");
     case "set-own-language":
@@ -206,6 +243,8 @@ export function actionWord(i18n: I18n, action: string): string {
     case "void-fit-test":
     case "strike-wearing-round":
       return i18n.t("Struck out");
+    case "replace-own-report":
+      return i18n.t("Replaced by a later report");
     case "start-microphone-check":
       return i18n.t("Recordings sent in");
     case "type-microphone-check":
@@ -264,6 +303,12 @@ export function actionWord(i18n: I18n, action: string): string {
       return i18n.t("Reopened");
     case "close-finding":
       return i18n.t("Closed");
+    case "draw-records":
+      return i18n.t("Records drawn at random");
+    case "mark-drawn-record":
+      return i18n.t("Drawn record marked");
+    case "sign-draw":
+      return i18n.t("Drawn records signed off");
     case "record-training":
       return i18n.t("Training entered");
     case "change-training":

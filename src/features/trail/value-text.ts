@@ -214,7 +214,10 @@ function objectText(words: ValueWords, field: string, value: Record<string, unkn
     return unaccountedText(words, value as unknown as Unaccounted);
   if (field === "peak" && "weighting" in value)
     return `${valueText(words, "levelDb", value.levelDb)} (${String(value.weighting)})`;
-  if (field === "grants" && typeof role === "string") {
+  if (
+    ["grants", "granted", "revoked", "keptAsLastAdministrator"].includes(field) &&
+    typeof role === "string"
+  ) {
     const values = {
       role: roleWord(i18n, role as never),
       site: valueText(words, "siteId", value.siteId),

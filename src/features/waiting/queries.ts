@@ -12,6 +12,7 @@ const waitingReply = ownReply<WaitingView>(
   "outgoing",
   "troubled",
   "calibrationsDue",
+  "stepsDue",
 );
 
 export const waitingQuery = (siteId: string | undefined) =>

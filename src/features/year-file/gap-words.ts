@@ -4,7 +4,9 @@ import type { Gap } from "./queries";
 const ALL: Readonly<Record<Gap, true>> = {
   "not-measured": true,
   "no-protector": true,
+  "not-fitted": true,
   "not-trained": true,
+  "letter-late": true,
   "notice-late": true,
   "notice-not-sent": true,
   "not-assessed": true,
@@ -18,8 +20,12 @@ export function gapWord(i18n: I18n, kind: Gap): string {
       return i18n.t("In noise but not measured");
     case "no-protector":
       return i18n.t("No protector where one is required");
+    case "not-fitted":
+      return i18n.t("Fit not tested");
     case "not-trained":
       return i18n.t("Not trained");
+    case "letter-late":
+      return i18n.t("Letters of results unsent or late");
     case "notice-late":
       return i18n.t("Notices late");
     case "notice-not-sent":
@@ -36,6 +42,10 @@ export function gapMeaning(i18n: I18n, kind: Gap): string {
       return i18n.t("people over 80 dB by a task’s level or an estimate, with no run of their own");
     case "no-protector":
       return i18n.t("people whose finding is open");
+    case "not-fitted":
+      return i18n.t("people in noise with a protector, and no fit test within the site’s interval");
+    case "letter-late":
+      return i18n.t("sent after the rule’s days, or not at all");
     case "not-trained":
       return i18n.t("people to whom the rules owe training, and none within their interval");
     case "notice-late":

@@ -1,0 +1,102 @@
+import { recordAudit } from "../lib/audit";
+import { execute, row, rows } from "../lib/db";
+import type { Role } from "../lib/policy";
+
+interface Mapped {
+  id: string;
+  role: Role;
+  siteId: string | null;
+}
+
+/** Whether nobody would be left who administers, without these grants. */
+async function leavesNobody(organizationId: string, lost: readonly Mapped[]): Promise<boolean> {
+  if (!lost.some(({ role }) => role === "administrator")) return false;
+  // Two who lose the role at one moment must not each take the other for the one who stays.
+  await execute("SELECT 1 FROM organizations WHERE id = $1 FOR UPDATE", [organizationId]);
+  const others = await rows(
+    `SELECT 1 AS one FROM role_grants g JOIN users u ON u.id = g.user_id
+     WHERE g.role = 'administrator' AND g.revoked_at IS NULL AND u.revoked_at IS NULL AND NOT (g.id = ANY ($1::uuid[])) LIMIT 1`,
+    [lost.map(({ id }) => id)],
+  );
+  return others.length === 0;
+}
+
+/**
+ * Brings what a user holds by groups in line with the groups that the sign-in service states now; none stated is none
+ * held. Roles granted by hand are not touched. The organization's last administrator stays one, and the trail says so.
+ */
+export async function followGroups(
+  user: { id: string; organizationId: string },
+  groups: readonly string[],
+): Promise<void> {
+  const wanted = await rows<Mapped>(
+    `SELECT m.id, m.role, m.site_id AS "siteId" FROM group_mappings m
+     WHERE m.ended_at IS NULL AND m.group_name = ANY ($1::text[]) ORDER BY m.id`,
+    [[...groups]],
+  );
+  const held = await rows<Mapped & { mappingId: string }>(
+    `SELECT g.id, g.mapping_id AS "mappingId", g.role, g.site_id AS "siteId" FROM role_grants g
+     WHERE g.user_id = $1 AND g.mapping_id IS NOT NULL AND g.revoked_at IS NULL FOR UPDATE`,
+    [user.id],
+  );
+  const granted = wanted.filter(({ id }) => !held.some(({ mappingId }) => mappingId === id));
+  const lost = held.filter(({ mappingId }) => !wanted.some(({ id }) => id === mappingId));
+  for (const { id, role, siteId } of granted)
+    await execute(
+      "INSERT INTO role_grants (organization_id, user_id, role, site_id, mapping_id) VALUES ($1, $2, $3, $4, $5)",
+      [user.organizationId, user.id, role, siteId, id],
+    );
+  const kept = (await leavesNobody(user.organizationId, lost))
+    ? lost.filter(({ role }) => role === "administrator")
+    : [];
+  const revoked = lost.filter((grant) => !kept.includes(grant));
+  if (revoked.length > 0)
+    await execute("UPDATE role_grants SET revoked_at = now() WHERE id = ANY ($1::uuid[])", [
+      revoked.map(({ id }) => id),
+    ]);
+  if (granted.length + lost.length === 0) return;
+  const plain = ({ role, siteId }: Mapped) => ({ role, siteId });
+  await recordAudit(
+    { organizationId: user.organizationId },
+    {
+      action: "follow-groups",
+      subjectKind: "user",
+      subjectId: user.id,
+      values: {
+        ...(granted.length > 0 ? { granted: granted.map(plain) } : {}),
+        ...(revoked.length > 0 ? { revoked: revoked.map(plain) } : {}),
+        ...(kept.length > 0 ? { keptAsLastAdministrator: kept.map(plain) } : {}),
+      },
+    },
+  );
+}
+
+/** Somebody whom nobody granted anything by hand, and whom a group lets in. */
+export async function admitByGroup(
+  organizationId: string,
+  identity: { issuer: string; subject: string; email: string | null; name: string },
+): Promise<{ id: string; epoch: number } | null> {
+  // Whose access was ended by hand is let in by hand only.
+  const before = await row(
+    `SELECT 1 AS one FROM users WHERE revoked_at IS NOT NULL AND (expected_subject = :subject OR lower(email) = lower(:email)) LIMIT 1`,
+    { subject: identity.subject, email: identity.email ?? "" },
+  );
+  if (before) return null;
+  const { issuer, subject, email, name } = identity;
+  const made = await row<{ id: string; epoch: number }>(
+    `INSERT INTO users (organization_id, name, email, issuer, subject)
+     VALUES (:organizationId, :name, :email, :issuer, :subject) ON CONFLICT DO NOTHING RETURNING id, session_epoch AS epoch`,
+    { organizationId, name: name.slice(0, 200), email, issuer, subject },
+  );
+  if (!made) return null;
+  await recordAudit(
+    { organizationId },
+    {
+      action: "admit-by-group",
+      subjectKind: "user",
+      subjectId: made.id,
+      values: { name, email },
+    },
+  );
+  return made;
+}
