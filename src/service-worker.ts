@@ -26,6 +26,8 @@ interface Worker {
 }
 declare const self: Worker;
 
+export {}; // a module: its `self` is not the window's
+
 const files = self.__WB_MANIFEST;
 const PREFIX = "dinward-shell-";
 const PAGE = "/index.html";

@@ -122,6 +122,8 @@ export async function rotateSession(
     sameSite: "lax",
     secure: Boolean(secure),
     path: "/",
+    // It outlives the browser as the session does, and is worth nothing without it.
+    maxAge: 30 * 86_400_000,
   });
 }
 

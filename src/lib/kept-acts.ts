@@ -1,5 +1,12 @@
 import { useSyncExternalStore } from "react";
-import { ApiError, api, isUnreached, newChangeKey, type ReplySchema } from "./api";
+import {
+  ApiError,
+  api,
+  connectionEvents,
+  isUnreached,
+  newChangeKey,
+  type ReplySchema,
+} from "./api";
 import { createKeptList, KEPT, type KeptList } from "./kept-list";
 
 /** What an act was, for whoever reads the list of what is not sent. */
@@ -135,8 +142,8 @@ function createKeptActs(kept: KeptList<KeptAct>, userId: string): KeptActs {
       moveOn(act, reply);
       return settled("sent");
     } catch (error) {
-      if (isUnreached(error) || !(error instanceof ApiError) || [401, 429].includes(error.status))
-        throw error;
+      if (!(error instanceof ApiError) || isUnreached(error)) throw error;
+      if ([401, 429].includes(error.status) || error.code === "csrf") throw error;
       const stands = standsNow(error);
       if (stands && isAlreadyDone(act, stands)) return settled("already-done");
       kept.put({ ...act, state: stands ? "conflict" : "refused", stands, code: error.code });
@@ -197,6 +204,7 @@ function createKeptActs(kept: KeptList<KeptAct>, userId: string): KeptActs {
       const settled: Settled[] = [];
       try {
         const { user } = await api.get("/session", { schema: whoIsThere, asksWhoIsThere: true });
+        if (!user) connectionEvents.tell("session-expired");
         // Somebody else may have signed in here in another window: what was done by one is not sent in another's name.
         if (user?.id !== userId) return [];
         const keys = kept.list().map(({ key }) => key);

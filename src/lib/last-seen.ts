@@ -11,7 +11,11 @@ interface SeenState {
 }
 
 const isSeen = (value: unknown): value is SeenState =>
-  typeof value === "object" && value !== null && "name" in value && "at" in value && "state" in value;
+  typeof value === "object" &&
+  value !== null &&
+  "name" in value &&
+  "at" in value &&
+  "state" in value;
 
 /** A crew's sheet, its rounds and a few days' tallies; more would fill the device. */
 const MOST_STATES = 12;

@@ -31,8 +31,8 @@ import {
   undoTap,
 } from "../features/wearing/tally";
 import { ApiError, isUnreached, newChangeKey } from "../lib/api";
-import { keptActsOf } from "../lib/kept-acts";
 import { useLocale } from "../lib/i18n";
+import { keptActsOf } from "../lib/kept-acts";
 import { useOneAtATime } from "../lib/one-at-a-time";
 import { paths } from "../paths";
 import "../styles/sample.css";

@@ -8,6 +8,7 @@ import { RecordEnds } from "../../server/exports/record-ends";
 import { YEAR_COLUMNS } from "../../server/exports/year-columns";
 import {
   buildDay,
+  buildFitTest,
   buildInstrument,
   buildSite,
   buildTask,
@@ -432,6 +433,75 @@ describe("what is missing in a year", () => {
     expect(await names("no-protector")).toMatchObject([
       { id: worker.id, note: task.name, date: "2026-03-04" },
     ]);
+  });
+
+  test("where the site asks for fit tests, who wears a protector in noise and has none within the interval", async () => {
+    const site = await buildSite();
+    await owner().query("UPDATE sites SET fit_every_months = 12 WHERE id = $1", [site.id]);
+    const [never, longAgo, lately] = [
+      await buildWorker({ site }),
+      await buildWorker({ site }),
+      await buildWorker({ site }),
+    ];
+    for (const worker of [never, longAgo, lately]) await buildDay(worker, "2026-03-02");
+    await buildFitTest({ worker: longAgo, testedOn: "2025-03-01" });
+    await buildFitTest({ worker: lately, testedOn: "2025-03-03" });
+    const { counts, names } = await gaps(site);
+    expect(counts["not-fitted"]).toBe(2);
+    expect((await names("not-fitted")).map(({ id }: { id: string }) => id).sort()).toEqual(
+      [never.id, longAgo.id].sort(),
+    );
+    const silent = await buildSite();
+    await buildDay(await buildWorker({ site: silent }), "2026-03-02");
+    expect((await gaps(silent)).counts["not-fitted"]).toBe(0);
+  });
+
+  test("a letter of results is late until it reached its worker within the rule's days", async () => {
+    const site = await buildSite();
+    const { organizationId } = site;
+    const letter = async (date: string, dueOn: string, signedOn: string | null) => {
+      const worker = await buildWorker({ site });
+      const resultId = await buildDay(worker, date);
+      const letterId = await insert("result_letters", {
+        organizationId,
+        siteId: site.id,
+        workerId: worker.id,
+        ruleSet: "eu-2003-10-ec",
+        ruleSetVersion: 1,
+        dueOn,
+        language: "en",
+        subject: "Results",
+        bodyText: "91.3 dB",
+      });
+      await insert("result_letter_days", {
+        organizationId,
+        letterId,
+        workerId: worker.id,
+        date,
+        resultId,
+        criterion: "upper-action",
+        isOver: true,
+      });
+      if (signedOn !== null)
+        await insert("notice_acknowledgements", {
+          organizationId,
+          letterId,
+          way: "paper",
+          signedOn,
+          recordedBy: (await buildUser({ organizationId, roles: ["officer"] })).id,
+        });
+      return worker.id;
+    };
+    const unsent = await letter("2026-03-02", "2026-03-17", null);
+    const late = await letter("2026-03-02", "2026-03-17", "2026-03-18");
+    await letter("2026-03-02", "2026-03-17", "2026-03-17");
+    await letter("2026-03-02", "2126-03-17", null);
+    await letter("2025-03-03", "2025-03-17", null);
+    const { counts, names } = await gaps(site);
+    expect(counts["letter-late"]).toBe(2);
+    expect((await names("letter-late")).map(({ id }: { id: string }) => id).sort()).toEqual(
+      [unsent, late].sort(),
+    );
   });
 
   test("the months state medians of the unrounded levels", async () => {

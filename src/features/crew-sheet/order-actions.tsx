@@ -7,8 +7,8 @@ import { FormProblem } from "../../components/form-problem";
 import { TextButton } from "../../components/link";
 import { ApiError, isUnreached } from "../../lib/api";
 import { useChangeKey } from "../../lib/change-key";
-import { keptActsOf, useKeptActs } from "../../lib/kept-acts";
 import { useTypedText } from "../../lib/keep-typed";
+import { keptActsOf, useKeptActs } from "../../lib/kept-acts";
 import { useMoveFocus } from "../../lib/move-focus";
 import { savedMeanwhile } from "../../lib/stale";
 import { tooManyText } from "../../lib/too-many";
@@ -39,11 +39,7 @@ export function useSendStep(
   const [asked, setAsked] = useState<OrderStep | null>(null);
   const current = asked ? savedMeanwhile(change.error, findingReply) : null;
 
-  const send = (
-    step: OrderStep,
-    onSent: (isKept: boolean) => void,
-    revision = order.revision,
-  ) => {
+  const send = (step: OrderStep, onSent: (isKept: boolean) => void, revision = order.revision) => {
     setAsked(step);
     const { findingId } = order;
     const { key } = acts.hold({

@@ -105,6 +105,14 @@ const WORDS: Readonly<Record<string, (i18n: I18n) => string>> = {
   class: (i18n) => i18n.t("Class"),
   serialNumber: (i18n) => i18n.t("Serial number"),
   calibrationDueOn: (i18n) => i18n.t("Calibration due"),
+  // Draws of records
+  seed: (i18n) => i18n.t("Seed"),
+  drawnFrom: (i18n) => i18n.t("Results drawn from"),
+  drawnFromSha256: (i18n) => i18n.t("SHA-256 of their ids"),
+  position: (i18n) => i18n.t("Place in the draw"),
+  word: (i18n) => i18n.t("Mark"),
+  records: (i18n) => i18n.t("Records"),
+  questions: (i18n) => i18n.t("Questions"),
   // Shifts
   unaccounted: (i18n) => i18n.t("Time not accounted for"),
   wornPct: (i18n) => i18n.t("Worn"),

@@ -12,6 +12,7 @@ import { AtEarFigure, OutsideFigure } from "../../components/day-figures";
 import { TextButton, TextLink } from "../../components/link";
 import { Section } from "../../components/page";
 import { useLocale } from "../../lib/i18n";
+import { useMoveFocus } from "../../lib/move-focus";
 import { paths } from "../../paths";
 import { letterStateWord } from "../letters/letter-words";
 import { markWord, toldWord } from "./draw-words";
@@ -22,6 +23,7 @@ export function DrawnRecordLine({ draw, record }: { draw: DrawView; record: Draw
   const { i18n } = useLingui();
   const locale = useLocale();
   const [isMarking, setIsMarking] = useState(false);
+  const [place, moveFocus] = useMoveFocus<HTMLElement>();
   const { figures, mark, position, worker } = record;
   const ruleSet = ruleSetVersion(figures.ruleSetKey, figures.ruleSetVersion);
   const mayMark = draw.can.mark && draw.signed === null;
@@ -36,7 +38,7 @@ export function DrawnRecordLine({ draw, record }: { draw: DrawView; record: Draw
       }
     >
       <dl className="record-line">
-        <dt>{i18n.t("Run")}</dt>
+        <dt>{i18n.t("Run or level")}</dt>
         <dd>
           <Lines none={i18n.t("None: it rests on the levels of tasks.")}>
             {[
@@ -126,7 +128,7 @@ export function DrawnRecordLine({ draw, record }: { draw: DrawView; record: Draw
           </Lines>
         </dd>
         <dt>{i18n.t("Mark")}</dt>
-        <dd>
+        <dd ref={place}>
           {mark === null ? (
             <p>{markWord(i18n, null)}</p>
           ) : (
@@ -140,9 +142,21 @@ export function DrawnRecordLine({ draw, record }: { draw: DrawView; record: Draw
           )}
           {mayMark &&
             (mark === null || isMarking ? (
-              <MarkForm draw={draw} record={record} onDone={() => setIsMarking(false)} />
+              <MarkForm
+                draw={draw}
+                record={record}
+                onDone={() => {
+                  setIsMarking(false);
+                  moveFocus(":scope > button");
+                }}
+              />
             ) : (
-              <TextButton onClick={() => setIsMarking(true)}>
+              <TextButton
+                onClick={() => {
+                  setIsMarking(true);
+                  moveFocus("input:checked");
+                }}
+              >
                 {i18n.t("Mark it anew")}
                 <span className="sr-only"> {position}</span>
               </TextButton>
