@@ -27,7 +27,11 @@ const beyondWorkers = [
   "spectrum-field",
 ]
   .map((name) => `src/components/${name}.tsx`)
-  .concat(["register-words", "role-word", "run-words"].map((name) => `src/lib/${name}.ts`));
+  .concat(
+    ["letter-words", "register-words", "role-word", "run-words"].map(
+      (name) => `src/lib/${name}.ts`,
+    ),
+  );
 
 const included = {
   base: [
@@ -53,7 +57,6 @@ const included = {
   ],
   people: [
     ...features("crew-sheet", "year-file", "trail", "people", "sites-admin", "access", "tokens"),
-    "src/features/letters/letter-words.ts",
     ...pages(
       "crew-sheet-page",
       "year-file-page",

@@ -1,3 +1,4 @@
+import ICAL from "ical.js";
 import { expect, test } from "vitest";
 import { writeCalendar } from "./icalendar";
 
@@ -36,4 +37,41 @@ test("an all-day entry ends before the next day; marks are masked; every line en
     "END:VCALENDAR",
     "",
   ]);
+});
+
+test("another program reads each entry as it was given", () => {
+  const entries = [
+    {
+      uid: "finding 1",
+      date: "2026-12-31",
+      summary: `Не хватает защиты; ${"Гайдабура, ".repeat(12)}`,
+      url: "https://x.example/findings/1",
+    },
+    {
+      uid: "duty:2",
+      date: "2028-02-29",
+      summary: "one, two;\nthree \\",
+      url: "https://x.example/due",
+    },
+  ];
+  const calendar = new ICAL.Component(ICAL.parse(writeCalendar("Ostmere works", at, entries)));
+  expect(calendar.getFirstPropertyValue("name")).toBe("Ostmere works");
+  const read = calendar.getAllSubcomponents("vevent").map((component) => {
+    const event = new ICAL.Event(component);
+    return {
+      uid: event.uid,
+      date: event.startDate.toString(),
+      ends: event.endDate.toString(),
+      isAllDay: event.startDate.isDate,
+      summary: event.summary,
+      url: String(component.getFirstPropertyValue("url")),
+    };
+  });
+  expect(read).toEqual(
+    entries.map((entry, index) => ({
+      ...entry,
+      ends: ["2027-01-01", "2028-03-01"][index],
+      isAllDay: true,
+    })),
+  );
 });

@@ -6,8 +6,8 @@ import type { LetterRow } from "../../../shared/schemas/letter";
 import { type DataColumn, DataTable, type DataTableProps } from "../../components/data-table";
 import { TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
+import { letterStateNote, letterStateWord } from "../../lib/letter-words";
 import { paths } from "../../paths";
-import { letterStateNote, letterStateWord } from "./letter-words";
 
 export function LettersTable({
   rows,

@@ -12,9 +12,9 @@ import { AtEarFigure, OutsideFigure } from "../../components/day-figures";
 import { TextButton, TextLink } from "../../components/link";
 import { Section } from "../../components/page";
 import { useLocale } from "../../lib/i18n";
+import { letterStateWord } from "../../lib/letter-words";
 import { useMoveFocus } from "../../lib/move-focus";
 import { paths } from "../../paths";
-import { letterStateWord } from "../letters/letter-words";
 import { markWord, toldWord } from "./draw-words";
 import { MarkForm } from "./mark-form";
 

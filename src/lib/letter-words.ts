@@ -1,8 +1,8 @@
 import type { I18n } from "@lingui/core";
-import { formatShortDate, localDateOf } from "../../../shared/format/date";
-import type { Locale } from "../../../shared/i18n/index";
-import { isolate } from "../../../shared/i18n/isolate";
-import type { LetterRow, LetterState } from "../../../shared/schemas/letter";
+import { formatShortDate, localDateOf } from "../../shared/format/date";
+import type { Locale } from "../../shared/i18n/index";
+import { isolate } from "../../shared/i18n/isolate";
+import type { LetterRow, LetterState } from "../../shared/schemas/letter";
 
 export function letterStateWord(i18n: I18n, state: LetterState): string {
   switch (state) {
