@@ -69,6 +69,57 @@ export async function assignProtector(
   return ids;
 }
 
+/**
+ * The same protector for many, as assignProtector; whoever has it for this use throughout that time is left as they are,
+ * whatever the size where none is named. Returns the new ids, and the workers left out.
+ *
+ * @throws AppError as assignProtector.
+ */
+export async function assignToMany(
+  actor: Actor,
+  workers: readonly Person[],
+  input: AssignmentInput,
+  paths: Paths,
+): Promise<{ ids: string[]; alreadyHad: string[] }> {
+  const holders = new Set(await holdersOf(workers, input));
+  const without = [...workers.entries()].filter(([, { id }]) => !holders.has(id));
+  const ids =
+    without.length === 0
+      ? []
+      : await assignProtector(
+          actor,
+          without.map(([, worker]) => worker),
+          input,
+          {
+            field: paths.field,
+            worker: (index, name) => paths.worker(without[index]?.[0] ?? index, name),
+          },
+        );
+  return { ids, alreadyHad: [...holders] };
+}
+
+async function holdersOf(workers: readonly Person[], input: AssignmentInput): Promise<string[]> {
+  const { taskId, areaId, innerModelId, outerModelId, size, audioDb, fromDate, toDate } = input;
+  const found = await rows<{ workerId: string }>(
+    `SELECT a.worker_id AS "workerId" FROM assignments a WHERE a.worker_id IN (:workerIds) AND ${sameUse}
+       AND a.inner_model_id = :innerModelId AND a.outer_model_id IS NOT DISTINCT FROM CAST(:outerModelId AS uuid)
+       AND (CAST(:size AS text) IS NULL OR a.size = :size) AND (CAST(:audioDb AS float8) IS NULL OR a.audio_db = :audioDb)
+       AND a.valid @> ${daysFromTo(":fromDate", ":toDate")}`,
+    {
+      workerIds: workers.map(({ id }) => id),
+      taskId,
+      areaId,
+      innerModelId,
+      outerModelId,
+      size,
+      audioDb,
+      fromDate,
+      toDate,
+    },
+  );
+  return found.map(({ workerId }) => workerId);
+}
+
 async function checkAssignment(
   actor: Actor,
   workers: readonly Person[],

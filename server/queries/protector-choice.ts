@@ -144,7 +144,10 @@ async function wearersOf(
         ORDER BY lower(m.valid) DESC LIMIT 1) AS "crewName",
        (SELECT i.name || coalesce(' + ' || o.name, '') FROM assignments a JOIN protector_models i ON i.id = a.inner_model_id
           LEFT JOIN protector_models o ON o.id = a.outer_model_id
-        WHERE a.worker_id = w.id AND a.valid @> CAST(:date AS date) AND ${ofUse} ORDER BY a.task_id NULLS LAST, a.area_id NULLS LAST LIMIT 1) AS "currentName"
+        WHERE a.worker_id = w.id AND a.valid @> CAST(:date AS date) AND ${ofUse} ORDER BY a.task_id NULLS LAST, a.area_id NULLS LAST LIMIT 1) AS "currentName",
+       coalesce((SELECT json_agg(json_build_object('use', CASE WHEN a.task_id IS NULL THEN 'everywhere' ELSE 'subject' END,
+          'modelId', a.inner_model_id, 'outerModelId', a.outer_model_id, 'fromDate', lower(a.valid)::text))
+        FROM assignments a WHERE a.worker_id = w.id AND upper_inf(a.valid) AND a.area_id IS NULL AND (a.task_id = :id OR a.task_id IS NULL)), '[]') AS holds
      FROM workers w WHERE w.site_id = :siteId AND ${ofSubject} AND w.hired_on <= CAST(:date AS date) + 31
        AND (w.left_on IS NULL OR w.left_on >= CAST(:date AS date)) AND ${visible(workerPolicy, actor, "w")}
      ORDER BY w.name, w.id LIMIT ${MOST_WEARERS + 1}`,
@@ -157,10 +160,11 @@ async function wearersOf(
   );
   return found.map((worker) => ({
     ...worker,
-    fits: [...(fits.get(worker.id) ?? [])].map(([modelId, { parDb, hasPassed }]) => ({
+    fits: [...(fits.get(worker.id) ?? [])].map(([modelId, { parDb, hasPassed, needDb }]) => ({
       modelId,
       parDb,
       hasPassed,
+      needDb,
     })),
   }));
 }

@@ -86,7 +86,7 @@ export async function fitsOf(
 ): Promise<Map<string, Map<string, OwnFit>>> {
   const found = await rows<FitRow>(
     `SELECT DISTINCT ON (f.worker_id, f.model_id) f.worker_id AS "workerId", f.model_id AS "modelId", v.par_db AS "parDb",
-       CASE WHEN v.need_db <= 0 THEN NULL ELSE v.has_passed END AS "hasPassed", f.tested_on::text AS "testedOn", v.facts
+       CASE WHEN v.need_db <= 0 THEN NULL ELSE v.has_passed END AS "hasPassed", v.need_db AS "needDb", f.tested_on::text AS "testedOn", v.facts
      FROM fit_tests f JOIN fit_test_revisions v ON v.id = f.current_revision_id
      WHERE f.worker_id = ANY (CAST(:ids AS uuid[])) AND NOT f.is_void AND v.par_db IS NOT NULL AND f.tested_on <= :date
      ORDER BY f.worker_id, f.model_id, f.tested_on DESC, f.created_at DESC`,

@@ -109,6 +109,11 @@ type StandingReport = Omit<OwnReports["rows"][number], "changeableUntil" | "canC
 export const changeableUntil = (firstSaidOn: string): string =>
   addDays(firstSaidOn, OWN_REPORT_CHANGE_DAYS);
 
+/** SQL: what the shifts of a look's day state of its task, by the minutes; null where a stretch of it states none. */
+const STATED_PCT = `(SELECT CASE WHEN bool_and(t.worn_pct IS NOT NULL) THEN sum(t.worn_pct * t.duration_min) / nullif(sum(t.duration_min), 0) END
+  FROM shifts s JOIN shift_tasks t ON t.shift_revision_id = s.current_revision_id
+  WHERE s.worker_id = l.worker_id AND s.date = l.seen_on AND NOT s.is_void AND t.task_id = l.task_id)::float8`;
+
 /** Own reports of a worker that stand, from a day on: the latest of each day and task. */
 export async function ownReports(
   worker: { id: string; timeZone: string },
@@ -117,7 +122,7 @@ export async function ownReports(
   const today = todayAt(worker.timeZone);
   const found = await rows<StandingReport>(
     `SELECT DISTINCT ON (l.seen_on, l.task_id) l.seen_on::text AS date, l.task_id AS "taskId", t.name AS "taskName", l.worn_count AS "wornCount",
-       l.seen_count AS "seenCount", o.note, (o.created_at AT TIME ZONE :timeZone)::date::text AS "saidOn",
+       l.seen_count AS "seenCount", ${STATED_PCT} AS "statedPct", o.note, (o.created_at AT TIME ZONE :timeZone)::date::text AS "saidOn",
        (min(o.created_at) OVER (PARTITION BY l.seen_on, l.task_id) AT TIME ZONE :timeZone)::date::text AS "firstSaidOn",
        coalesce(u.worker_id = l.worker_id, FALSE) AS "isByWorker"
      FROM wearing_looks l JOIN wearing_rounds o ON o.id = l.round_id JOIN tasks t ON t.id = l.task_id LEFT JOIN users u ON u.id = o.author_id

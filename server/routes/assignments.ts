@@ -5,9 +5,10 @@ import {
   AssignmentInput,
   AssignmentList,
   AssignmentView,
+  ManyAssigned,
   ManyAssignmentsInput,
 } from "../../shared/schemas/worker";
-import { assignProtector } from "../commands/assign-protector";
+import { assignProtector, assignToMany } from "../commands/assign-protector";
 import { endAssignment } from "../commands/end-assignment";
 import { endpoint } from "../lib/endpoint";
 import { notFound } from "../lib/errors";
@@ -80,18 +81,20 @@ export function defineAssignmentRoutes(): void {
   endpoint.post(
     "/assignments/many",
     {
-      summary: "The same assignment for many workers: all of them or none",
+      summary:
+        "The same assignment for many workers: all of them or none, but for those who have it already",
       may: may.officer,
       body: ManyAssignmentsInput,
-      reply: AssignmentList,
+      reply: ManyAssigned,
     },
     async ({ actor, body }) => {
       const workers = await workersToAssign(actor, body.workerIds);
-      const ids = await assignProtector(actor, workers, body.assignment, {
+      const { ids, alreadyHad } = await assignToMany(actor, workers, body.assignment, {
         field: (name) => ["assignment", name],
         worker: (index) => ["workerIds", index],
       });
-      return { rows: (await listAssignments(actor, { ids })).map(presentAssignment) };
+      const assigned = ids.length === 0 ? [] : await listAssignments(actor, { ids });
+      return { rows: assigned.map(presentAssignment), alreadyHad };
     },
   );
 

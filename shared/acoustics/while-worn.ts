@@ -1,4 +1,4 @@
-import type { DayEvaluation } from "./types";
+import type { DayEvaluation, TaskAtEar } from "./types";
 
 /**
  * The level at the ear while worn in the task that decides the protector's word, dB(A), as it counts. Where only bounds of
@@ -17,7 +17,14 @@ export function whileWorn({
   const deciding = tasks.find(({ timedTaskId }) => timedTaskId === decidingTaskId);
   const range = deciding?.wornRangeDb;
   if (!range) return { levelDb: deciding?.wornDb ?? null, bound: "exact" };
-  const { leastDb, mostDb } = range;
+  return rangeWhileWorn(range, atEarBound);
+}
+
+/** The end of what is possible while worn that stands for a task, dB: the one on which the day at the ear rests. */
+export function rangeWhileWorn(
+  { leastDb, mostDb }: NonNullable<TaskAtEar["wornRangeDb"]>,
+  atEarBound: DayEvaluation["atEarBound"],
+): { readonly levelDb: number | null; readonly bound: "upper" | "lower" } {
   return mostDb === null || (atEarBound === "lower" && leastDb !== null)
     ? { levelDb: leastDb, bound: "lower" }
     : { levelDb: mostDb, bound: "upper" };

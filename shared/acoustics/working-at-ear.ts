@@ -57,6 +57,9 @@ export interface TimeAtEar {
   readonly offDb: number | null;
   readonly onDb: number | null;
   readonly isCredited: boolean;
+  /** On which side the level outside stands, and those while worn and in the task. */
+  readonly bareBound: Bound | null;
+  readonly bound: Bound | null;
 }
 
 export interface ShiftAtEar {
@@ -68,13 +71,17 @@ export interface ShiftAtEar {
   readonly activeWornMin: number;
 }
 
+/** Weights that ought to be one differ by less than this part of them. */
+const BINARY_NOISE = 1e-9;
+
 /** The day at the ear row by row, as the engine adds it up: T/T0 · 10^(L/k), k of the rule without its threshold. */
 export class DayAtEarRows {
   readonly rows: readonly TimeAtEar[];
   readonly shifts: readonly ShiftAtEar[];
   readonly bound: Bound | null;
   readonly factor: number;
-  private readonly law: ExchangeLaw;
+  /** The rule's law without its threshold. */
+  readonly law: ExchangeLaw;
 
   constructor(
     day: DayInput,
@@ -116,6 +123,11 @@ export class DayAtEarRows {
       const weight = scale.isByReading
         ? steadyWeight(task.level.levelDb, lawHere)
         : (isLeast ? leastAtEar : mostAtEar)(task.level, lawHere, this.outsideLaw);
+      const isBounded =
+        !scale.isByReading &&
+        mostAtEar(task.level, lawHere, this.outsideLaw) >
+          leastAtEar(task.level, lawHere, this.outsideLaw) * (1 + BINARY_NOISE);
+      const bareBound = isBounded ? this.bound : null;
       const tasksDb = weight > 0 ? levelOfWeight(weight, law) : null;
       const worn = seen.isWorn ? (task.wornPct ?? 100) / 100 : 0;
       const common = {
@@ -127,6 +139,8 @@ export class DayAtEarRows {
         tasksDb,
         worn,
         isCredited: atEar.creditedTaskIds.has(task.id),
+        bareBound,
+        bound: bareBound,
       };
       rows.push(
         seen.audio
@@ -167,6 +181,8 @@ export class DayAtEarRows {
         offDb: quietDb,
         onDb: quietDb,
         isCredited: false,
+        bareBound: null,
+        bound: null,
       });
     }
     return rows;
@@ -223,6 +239,8 @@ export class DayAtEarRows {
       offDb: inTask(noiseDb),
       onDb: inTask(noiseActiveDb ?? noiseDb),
       scale: 1,
+      // Beside an average that is none by energy the sum with the programme is only bounded.
+      ...(audio.isUpperByEnergy ? {} : { bound: this.bound }),
     };
   }
 

@@ -52,6 +52,7 @@ import {
   name,
   number,
   power,
+  relationOf,
   row,
   SUM,
   scientific,
@@ -689,11 +690,13 @@ export class NoiseUnderLaw {
   }
 }
 
-const relationOf = (bound: Bound | null): string =>
-  bound === null ? "=" : bound === "upper" ? "≤" : "≥";
-
 /** The level with which an average of this metric counts under a law. */
-function countedAs(metric: LevelMetric, levelDb: number, law: ExchangeLaw, side: Side): Counted {
+export function countedAs(
+  metric: LevelMetric,
+  levelDb: number,
+  law: ExchangeLaw,
+  side: Side,
+): Counted {
   if (servesExactly(metric, law)) {
     return { weight: leastWeight(metric, levelDb, law), usedDb: levelDb, stands: "exact" };
   }
@@ -713,7 +716,7 @@ function countedAs(metric: LevelMetric, levelDb: number, law: ExchangeLaw, side:
 }
 
 /** How levels that do not count as they stand come by the one that counts. */
-function boundLines(
+export function boundLines(
   levels: readonly { metric: LevelMetric; levelDb: number; of: WorkingValue | null }[],
   law: ExchangeLaw,
   side: Side,

@@ -278,6 +278,18 @@ export function table(
   return { title, columns, rows };
 }
 
+/** How a figure stands to the number that is known of it. */
+export const relationOf = (bound: Bound | null): string =>
+  bound === null ? "=" : bound === "upper" ? "≤" : "≥";
+
+/** An equation whose result is only a bound: its first sign says so. */
+export function related(parts: readonly MathPart[], bound: Bound | null): readonly MathPart[] {
+  const at = parts.findIndex((part) => part.kind === "sign" && part.text.startsWith("="));
+  return parts.map((part, index) =>
+    index === at && part.kind === "sign" ? sign(relationOf(bound) + part.text.slice(1)) : part,
+  );
+}
+
 /** Several parts between their signs: a + b + c. */
 export function between(parts: readonly (readonly MathPart[])[], by: string): MathPart[] {
   return parts.flatMap((part, index) => (index === 0 ? part : [sign(by), ...part]));

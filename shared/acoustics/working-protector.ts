@@ -48,6 +48,8 @@ type Parts = readonly MathPart[];
 
 const LA: MathPart = symbol("L", "A");
 const WHILE_WORN: MathPart = symbol("L", "A,m", true);
+/** Behind the protector, of a level on record that does not count as it stands. */
+const ON_RECORD: MathPart = symbol("L", "A", true);
 const WHILE_WORN_ON: MathPart = symbol("L", "A,m,on", true);
 /** What is left of the noise where a programme is added to it. */
 const NOISE_LEFT: MathPart = symbol("L", "N", true);
@@ -272,6 +274,40 @@ function bandReductionLine(
     value(difference(bareDb - behindDb), true),
   ]);
   return bareDb - behindDb;
+}
+
+/** The method's level is behind the protector on the level on record, where another counts. */
+export function onRecord(parts: Parts): Parts {
+  const [first, ...rest] = parts;
+  return first === WHILE_WORN || first === NOISE_LEFT ? [ON_RECORD, ...rest] : parts;
+}
+
+/** As much off the bound that counts as comes off the level on record: L′ ≤ Lm − (LA − L′A). */
+export function boundedLine(
+  recordDb: number,
+  behindDb: number,
+  countedDb: number,
+  { wornDb, audio }: TaskAtEar,
+): Parts {
+  return [
+    audio ? NOISE_LEFT : WHILE_WORN,
+    sign("="),
+    symbol("L", "m"),
+    sign("− ("),
+    LA,
+    sign("−"),
+    ON_RECORD,
+    sign(")"),
+    sign("="),
+    value(level(countedDb)),
+    sign("− ("),
+    value(level(recordDb)),
+    sign("−"),
+    value(level(behindDb)),
+    sign(")"),
+    sign("="),
+    value(level(audio?.noiseDb ?? wornDb!), true),
+  ];
 }
 
 /** What the active part does on top, and the level with it; empty where there is none to tell. */

@@ -5,6 +5,8 @@ import { type ExchangeLaw, isSameLaw, lawOf, levelFactor } from "./exchange-law"
 import { creditedPeaks } from "./maximum";
 import { isSameFigure, outsideCriterion } from "./outside-criterion";
 import { evaluateAtEar } from "./protection/at-ear";
+import { withAudioDb } from "./protection/programme-audio";
+import { wornShareLevelDb } from "./protection/wearing-time";
 import type {
   AttenuationMethod,
   Criterion,
@@ -14,6 +16,8 @@ import type {
   ReadingInput,
   Reason,
   RuleSetVersion,
+  TaskAtEar,
+  TaskLevel,
   TimedTask,
   Verdict,
   WearingLooks,
@@ -25,7 +29,7 @@ import {
   POSITION_DB,
 } from "./uncertainty";
 import { DayAtEarRows, type TimeAtEar } from "./working-at-ear";
-import { boundedLevel, NoiseUnderLaw } from "./working-noise";
+import { boundedLevel, boundLines, countedAs, NoiseUnderLaw } from "./working-noise";
 import {
   type Bound,
   bounded,
@@ -44,6 +48,8 @@ import {
   number,
   power,
   reason,
+  related,
+  relationOf,
   row,
   SUM,
   scientific,
@@ -73,7 +79,9 @@ import {
   activeLines,
   audioSum,
   bandTable,
+  boundedLine,
   methodLines,
+  onRecord,
   peakLine,
   programmeLines,
 } from "./working-protector";
@@ -90,7 +98,7 @@ export type {
   WorkingValue,
 } from "./working-parts";
 
-import { whileWorn } from "./while-worn";
+import { rangeWhileWorn, whileWorn } from "./while-worn";
 
 /**
  * The working of a day's result, built on demand from the same inputs. Texts are messages of the catalogue.
@@ -650,8 +658,11 @@ class Builder {
 
   private protectorStep(): Draft {
     const hasActive = this.evaluation.tasks.some(({ wornActiveDb }) => wornActiveDb !== null);
+    // Elsewhere only the whole shift has a word, which stands at the head.
+    const hasWords = this.governing.protection.adequacy === "en-458";
     const columns = [
       column("task", text(/*i18n*/ "Task"), false),
+      column("device", text(/*i18n*/ "Device"), false),
       column("outside", text(/*i18n*/ "Outside"), true),
       column("worn", text(/*i18n*/ "Worn"), true),
       column(
@@ -660,13 +671,9 @@ class Builder {
         true,
       ),
       column("method", text(/*i18n*/ "Method"), false),
-      column("word", text(/*i18n*/ "Protector"), false),
-      ...(hasActive
-        ? [
-            column("while-worn-on", text(/*i18n*/ "While worn, on"), true),
-            column("word-on", text(/*i18n*/ "Protector, on"), false),
-          ]
-        : []),
+      ...(hasWords ? [column("word", text(/*i18n*/ "Protector"), false)] : []),
+      ...(hasActive ? [column("while-worn-on", text(/*i18n*/ "While worn, on"), true)] : []),
+      ...(hasActive && hasWords ? [column("word-on", text(/*i18n*/ "Protector, on"), false)] : []),
       column(
         "in-task",
         hasActive ? text(/*i18n*/ "In the task, off") : text(/*i18n*/ "In the task"),
@@ -679,33 +686,38 @@ class Builder {
           ]
         : []),
     ];
-    const rows = this.evaluation.tasks.map((task) => ({
-      ...row(task.timedTaskId, [
-        this.nameOf(task.timedTaskId),
-        level(task.outsideDb),
-        task.isWorn ? wornCell(task.wornPct) : share(0),
-        level(task.wornDb),
-        task.governingMethod
-          ? ({ kind: "method", method: task.governingMethod } as const)
-          : task.reason
-            ? reason(task.reason)
-            : null,
-        task.isWorn
-          ? word(task.word)
-          : ({ kind: "text", text: text(/*i18n*/ "not worn") } as const),
-        ...(hasActive ? [level(task.wornActiveDb), word(task.wordActive)] : []),
-        this.countsNothing(task.timedTaskId) ? words(COUNTS_NOTHING) : level(task.inTaskDb),
-        ...(this.counted
-          ? [
-              level(task.inTaskActiveDb),
-              task.wornActiveDb === null
-                ? null
-                : words(this.isCredited(task.timedTaskId) ? COUNTS_ON : COUNTS_OFF),
-            ]
-          : []),
-      ]),
-      isEmphasized: task.timedTaskId === this.evaluation.decidingTaskId,
-    }));
+    const rows = this.evaluation.tasks.map((task) => {
+      const of = this.asCounted(task);
+      return {
+        ...row(task.timedTaskId, [
+          this.nameOf(task.timedTaskId),
+          task.isWorn ? this.deviceOf(task.timedTaskId) : words(NOT_WORN),
+          level(task.outsideDb),
+          task.isWorn ? wornCell(task.wornPct) : share(0),
+          boundedLevel(of.wornDb, of.bound),
+          task.governingMethod
+            ? ({ kind: "method", method: task.governingMethod } as const)
+            : task.reason
+              ? reason(task.reason)
+              : null,
+          ...(hasWords ? [word(task.word)] : []),
+          ...(hasActive ? [boundedLevel(of.wornActiveDb, of.bound)] : []),
+          ...(hasActive && hasWords ? [word(task.wordActive)] : []),
+          this.countsNothing(task.timedTaskId)
+            ? words(COUNTS_NOTHING)
+            : boundedLevel(of.inTaskDb, of.bound),
+          ...(this.counted
+            ? [
+                boundedLevel(of.inTaskActiveDb, of.bound),
+                task.wornActiveDb === null
+                  ? null
+                  : words(this.isCredited(task.timedTaskId) ? COUNTS_ON : COUNTS_OFF),
+              ]
+            : []),
+        ]),
+        isEmphasized: task.timedTaskId === this.evaluation.decidingTaskId,
+      };
+    });
     // Those of the others stand at their rows, with the day by each method.
     const methods = new Set(
       this.evaluation.tasks.flatMap(({ governingMethod }) => governingMethod ?? []),
@@ -751,12 +763,83 @@ class Builder {
     return this.wornTasks().flatMap(({ atEar, task, level: of, protection }) => {
       const governing = atEar.methods.find(({ method }) => method === atEar.governingMethod);
       if (!governing) return [];
+      const label = name(task.name);
+      const { usedDb, bound, ...counted } = this.asCounted(atEar);
+      const atBound = (parts: readonly MathPart[]): Line =>
+        line(isAtEar(parts) ? related(parts, bound) : parts, label);
+      const byMethod = methodLines(of, protection, rule, governing);
+      const onTop = [...activeLines(of, protection, rule, counted), ...programmeLines(counted)].map(
+        atBound,
+      );
+      if (bound === null || usedDb === of.levelDb) return [...byMethod.map(atBound), ...onTop];
+      // Where nothing bounds the level there is only what the method makes of the one on record.
+      if (usedDb === null) return byMethod.map((parts) => line(onRecord(parts), label));
       return [
-        ...methodLines(of, protection, rule, governing),
-        ...activeLines(of, protection, rule, atEar),
-        ...programmeLines(atEar),
-      ].map((parts) => line(parts, name(task.name)));
+        ...byMethod.map((parts) => line(onRecord(parts), label)),
+        ...boundLines([{ ...of, of: label }], this.dayAtEar.law, sideOf(bound)),
+        atBound(boundedLine(of.levelDb, governing.atEarDb!, usedDb, counted)),
+        ...onTop,
+      ];
     });
+  }
+
+  /** A task at the ear by the level that counts: where that is a bound, as much off it as off the level on record. */
+  private asCounted(
+    atEar: TaskAtEar,
+  ): TaskAtEar & { readonly usedDb: number | null; readonly bound: Bound | null } {
+    const of = this.tasks.find(({ id }) => id === atEar.timedTaskId)?.level ?? null;
+    if (atEar.wornRangeDb && of) return this.atBoundOf(atEar, atEar.wornRangeDb, of);
+    const bare = atEar.isWorn
+      ? undefined
+      : this.dayAtEar.rows.find(({ id }) => id === atEar.timedTaskId);
+    return bare?.bareBound
+      ? { ...atEar, inTaskDb: bare.offDb, usedDb: bare.bareDb, bound: bare.bareBound }
+      : { ...atEar, usedDb: atEar.outsideDb, bound: null };
+  }
+
+  private atBoundOf(
+    atEar: TaskAtEar,
+    range: NonNullable<TaskAtEar["wornRangeDb"]>,
+    of: TaskLevel,
+  ): TaskAtEar & { readonly usedDb: number | null; readonly bound: Bound } {
+    const { law, factor } = this.dayAtEar;
+    const { levelDb: wornDb, bound } = rangeWhileWorn(range, this.evaluation.atEarBound);
+    const { usedDb } = countedAs(of.metric, of.levelDb, law, sideOf(bound));
+    const moved = (db: number | null) =>
+      db === null || usedDb === null ? null : db + usedDb - of.levelDb;
+    const noiseDb = moved(atEar.audio?.noiseDb ?? null);
+    const noiseActiveDb = moved(atEar.audio?.noiseActiveDb ?? null);
+    const audio =
+      atEar.audio && noiseDb !== null ? { ...atEar.audio, noiseDb, noiseActiveDb } : null;
+    const wornActiveDb = audio
+      ? noiseActiveDb === null
+        ? null
+        : withAudioDb(noiseActiveDb, audio.levelDb)
+      : moved(atEar.wornActiveDb);
+    const inTask = (whileWornDb: number | null): number | null =>
+      whileWornDb === null || usedDb === null || atEar.wornPct === null
+        ? null
+        : wornShareLevelDb(usedDb, whileWornDb, atEar.wornPct, factor);
+    return {
+      ...atEar,
+      wornDb,
+      wornActiveDb,
+      inTaskDb: inTask(wornDb),
+      inTaskActiveDb: inTask(wornActiveDb),
+      ...(audio && { audio }),
+      usedDb,
+      bound,
+    };
+  }
+
+  /** What is worn in a task: one, or both of a pair. */
+  private deviceOf(timedTaskId: string): WorkingValue | null {
+    const protection = this.tasks.find(({ id }) => id === timedTaskId)?.protection;
+    if (!protection) return null;
+    const inner = name(protection.inner.name);
+    return protection.outer
+      ? words(text(/*i18n*/ "{inner} under {outer}", { inner, outer: name(protection.outer.name) }))
+      : inner;
   }
 
   /** By band, and by the methods that do not govern. */
@@ -1162,12 +1245,12 @@ class Builder {
         cellsOf({
           task: one.task ? name(one.task.name) : words(text(/*i18n*/ "Quiet, as stated")),
           minutes: minutes(one.minutes),
-          bare: level(one.tasksDb),
+          bare: boundedLevel(one.tasksDb, one.bareBound),
           "bare-term": scientific(bareTerm(one)),
           worn: one.atEar?.isWorn ? wornCell(one.task?.wornPct ?? null) : share(0),
-          "in-task": isNothing(one) ? words(COUNTS_NOTHING) : level(one.offDb),
+          "in-task": isNothing(one) ? words(COUNTS_NOTHING) : boundedLevel(one.offDb, one.bound),
           term: scientific(day.term(one, one.offDb)),
-          "in-task-on": level(one.onDb),
+          "in-task-on": boundedLevel(one.onDb, one.bound),
           "term-on": scientific(day.term(one, one.onDb)),
           "as-worked": scientific(day.asWorkedTerm(one) ?? 0),
         }),
@@ -1202,7 +1285,7 @@ class Builder {
         line(
           [
             symbol("L", sub, true),
-            sign("="),
+            sign(relationOf(one.bound)),
             k,
             sign("lg ("),
             symbol("f"),
@@ -1276,7 +1359,7 @@ class Builder {
       line(
         [
           symbol("L", law.isEnergy ? "EX,8h" : "TWA", true),
-          sign(day.bound === null ? "=" : day.bound === "upper" ? "≤" : "≥"),
+          sign(relationOf(day.bound)),
           k,
           sign("lg"),
           SUM,
@@ -1381,7 +1464,9 @@ class Builder {
     const by = audio.isByEnergy ? sign("10") : k;
     const add = (noiseDb: number | null, wornDb: number | null, sub: string): void => {
       if (noiseDb === null || wornDb === null) return;
-      lines.push(line(audioSum(noiseDb, audio.levelDb, wornDb, sub, by), label));
+      lines.push(
+        line(related(audioSum(noiseDb, audio.levelDb, wornDb, sub, by), one.bound), label),
+      );
     };
     add(audio.noiseDb, one.wornDb, "A,m");
     add(audio.noiseOnDb, one.wornOnDb, "A,m,on");
@@ -1542,6 +1627,13 @@ function looksText(looks: WearingLooks): WorkingText {
         values,
       );
 }
+
+const NOT_WORN = text(/*i18n*/ "not worn");
+
+const isAtEar = ([first]: readonly MathPart[]): boolean =>
+  first?.kind === "symbol" && first.isAtEar === true;
+
+const sideOf = (bound: Bound): "least" | "most" => (bound === "lower" ? "least" : "most");
 
 const COUNTS_NOTHING = text(/*i18n*/ "counts nothing: under the threshold");
 

@@ -27,9 +27,23 @@ export const Wearer = z.object({
   hiredOn: IsoDate,
   /** What is assigned for this use today. */
   currentName: z.string().nullable(),
+  /** What is assigned until further notice for the task, or everywhere: given anew it would change nothing. */
+  holds: z.array(
+    z.object({
+      use: z.enum(["subject", "everywhere"]),
+      modelId: z.uuid(),
+      outerModelId: z.uuid().nullable(),
+      fromDate: IsoDate,
+    }),
+  ),
   /** The latest fit by model. */
   fits: z.array(
-    z.object({ modelId: z.uuid(), parDb: z.number(), hasPassed: z.boolean().nullable() }),
+    z.object({
+      modelId: z.uuid(),
+      parDb: z.number(),
+      hasPassed: z.boolean().nullable(),
+      needDb: z.number().nullable(),
+    }),
   ),
 });
 export type Wearer = z.infer<typeof Wearer>;

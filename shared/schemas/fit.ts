@@ -153,7 +153,12 @@ export const Candidate = z.object({
   /** Users protected by that much, percent; null: the share that the rule's own method protects. */
   marginSharePct: z.number().nullable(),
   lastFit: z
-    .object({ parDb: z.number(), hasPassed: z.boolean().nullable(), testedOn: IsoDate })
+    .object({
+      parDb: z.number(),
+      hasPassed: z.boolean().nullable(),
+      needDb: z.number().nullable(),
+      testedOn: IsoDate,
+    })
     .nullable(),
   batteryMin: z.number().nullable(),
   batteryLasts: z.boolean().nullable(),

@@ -64,6 +64,8 @@ export const OwnReports = z.object({
       taskName: z.string(),
       wornCount: z.number(),
       seenCount: z.number(),
+      /** Share worn as the day's shifts state it, percent of the task's time: it counts, and not the report. Null: no shift states it. */
+      statedPct: z.number().nullable(),
       note: z.string(),
       saidOn: IsoDate,
       /** Entered by the worker, and not by somebody whom they told. */

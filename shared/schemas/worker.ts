@@ -132,6 +132,8 @@ export const ManyAssignmentsInput = z
     });
   });
 export type ManyAssignmentsInput = z.infer<typeof ManyAssignmentsInput>;
+/** What was assigned, and who is left as they were: they have the same for this use already. */
+export const ManyAssigned = AssignmentList.extend({ alreadyHad: z.array(z.uuid()) });
 export const AssignmentEnd = z.object({ toDate: IsoDate });
 
 export const WorkerView = z.object({

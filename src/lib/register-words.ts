@@ -1,4 +1,5 @@
 import type { I18n } from "@lingui/core";
+import { hasToPass } from "../../shared/acoustics/protection/fit-rating";
 import type {
   Grade,
   InstrumentClass,
@@ -38,9 +39,13 @@ export function protectorKindWord(i18n: I18n, kind: ProtectorKind): string {
   }
 }
 
-/** Whether a fit passed; null: there was nothing to pass. */
-export function passWord(i18n: I18n, hasPassed: boolean | null): string {
-  if (hasPassed === null) return i18n.t("Nothing to pass");
+/** Whether a fit passed what the noise asks for; where that is not known, or nothing, this is said. */
+export function passWord(
+  i18n: I18n,
+  { hasPassed, needDb }: { hasPassed: boolean | null; needDb: number | null },
+): string {
+  if (needDb !== null && !hasToPass(needDb)) return i18n.t("Nothing to pass");
+  if (hasPassed === null) return i18n.t("Need not known");
   return hasPassed ? i18n.t("Fits") : i18n.t("Does not fit");
 }
 

@@ -33,6 +33,39 @@ export function answerWord(i18n: I18n, answer: Answer): string {
   }
 }
 
+/** A share that the day's own record states, percent; null: it states none. */
+interface Stated {
+  readonly statedPct: number | null;
+}
+export const isStated = ({ statedPct }: Stated): boolean => statedPct !== null;
+const WHOLE_PCT = 99.95;
+
+/** What becomes of a worker's word on tasks for which the day's own record states how long; null where it states none. */
+export function keptBesideWords(
+  i18n: I18n,
+  tasks: readonly (Stated & { readonly name: string })[],
+): string | null {
+  const stated = tasks.filter(isStated);
+  if (stated.length === 0) return null;
+  if (stated.length < tasks.length)
+    return i18n.t(
+      "For {tasks} it is written down how long you wore it that day, and that counts. What you say of it is kept beside that, and your safety officer sees it.",
+      { tasks: stated.map(({ name }) => name).join(", ") },
+    );
+  return stated.every(({ statedPct }) => (statedPct ?? 0) >= WHOLE_PCT)
+    ? i18n.t(
+        "It is written down for this day that you wore it the whole time, and that counts. What you say here is kept beside it, and your safety officer sees it.",
+      )
+    : i18n.t(
+        "It is written down for this day how long you wore it, and that counts. What you say here is kept beside it, and your safety officer sees it.",
+      );
+}
+
+/** More than so many points below what is written down, what was said is told beside the figure that rests on the record. */
+const CLEARLY_LESS_POINTS = 10;
+export const isClearlyLess = ({ wornCount, seenCount, statedPct }: Said & Stated): boolean =>
+  statedPct !== null && statedPct - (100 * wornCount) / seenCount > CLEARLY_LESS_POINTS;
+
 /** What was said, in the words of the answers where it was one of them. */
 export function saidWords(i18n: I18n, said: Said): string {
   const answer = answerOf(said);

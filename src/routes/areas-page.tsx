@@ -71,6 +71,7 @@ export function Component() {
           </Section>
         )}
         <DataTable<Area>
+          stacksOnPhone
           caption={i18n.t("Areas")}
           state={isPending ? "loading" : error ? "failed" : "ready"}
           error={error}

@@ -324,7 +324,7 @@ describe("the fitting desk", () => {
       candidates: [
         candidate(muff, "Fenmuff", "earmuff", {
           labelLess7Db: 17,
-          lastFit: { parDb: 18, hasPassed: null, testedOn: "2026-12-01" },
+          lastFit: { parDb: 18, hasPassed: null, needDb: -2, testedOn: "2026-12-01" },
         }),
       ],
       tests: [tested({ leftDb: [18], rightDb: [18], methodSdDb: 0, bands: null }, { needDb: 0 })],

@@ -169,6 +169,7 @@ export function Component() {
             {
               id: "wearers",
               head: i18n.t("Assigned today"),
+              hidesOnPhone: true,
               unit: i18n.t("people"),
               kind: "figure",
               sortValue: (row) => row.wearersToday,

@@ -123,11 +123,9 @@ function Wearing({
   const worn = new Set(
     evaluation.tasks.filter(({ isWorn }) => isWorn).map(({ timedTaskId }) => timedTaskId),
   );
+  const timed = input.shifts.flatMap((shift) => shift.tasks);
   const tasks = new Map(
-    input.shifts
-      .flatMap((shift) => shift.tasks)
-      .filter(({ id }) => worn.has(id))
-      .map(({ taskId, name }) => [taskId, name]),
+    timed.filter(({ id }) => worn.has(id)).map(({ taskId, name }) => [taskId, name]),
   );
   return (
     <>
@@ -137,10 +135,25 @@ function Wearing({
           workerId={workerId}
           siteId={siteId}
           date={date}
-          tasks={[...tasks].map(([id, name]) => ({ id, name }))}
+          tasks={[...tasks].map(([id, name]) => ({
+            id,
+            name,
+            statedPct: statedPct(timed.filter(({ taskId }) => taskId === id)),
+          }))}
           said={said}
         />
       )}
     </>
   );
+}
+
+/** What the record states of a task's stretches together, percent of their time; null where one of them states none. */
+function statedPct(stretches: NonNullable<ResultView["input"]>["shifts"][number]["tasks"]) {
+  if (stretches.some(({ wornFrom }) => wornFrom?.how !== "stated")) return null;
+  const minutes = stretches.reduce((sum, { durationMin }) => sum + durationMin, 0);
+  const worn = stretches.reduce(
+    (sum, { durationMin, wornPct }) => sum + durationMin * (wornPct ?? 0),
+    0,
+  );
+  return minutes > 0 ? worn / minutes : null;
 }

@@ -89,6 +89,9 @@ test("orders the register by EN 458's words for a task, and says what decided", 
     [worker.id, "Good"],
   ]);
   expect(choice.wearers.map(({ id }) => id)).not.toContain(other.id);
+  expect(choice.wearers[0]?.holds).toEqual([
+    { use: "everywhere", modelId: good.id, outerModelId: null, fromDate: expect.any(String) },
+  ]);
 });
 
 test("two together in the US: five more than the better one after its derating", async () => {

@@ -484,6 +484,21 @@ describe("what a worker says anew of the same day and task", () => {
       },
     });
     expect(second.wornFrom).toEqual({ how: "stated" });
+    // Who said it is told, too, which of it the shift states itself.
+    const said = await worker.get(`/workers/${own.id}/own-reports?from=${date}`);
+    expect(
+      new Map(
+        said.body.rows.map((one: { taskId: string; statedPct: number | null }) => [
+          one.taskId,
+          one.statedPct,
+        ]),
+      ),
+    ).toEqual(
+      new Map([
+        [task.id, null],
+        [other.id, 80],
+      ]),
+    );
     expect(body.sources[round.body.id]).toEqual({ label: expect.any(String), note: null });
   });
 

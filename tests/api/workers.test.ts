@@ -590,6 +590,58 @@ describe("assignments", () => {
     expect(foreign.status).toBe(404);
     const done = await client.post("/assignments/many", { workerIds: [one.id], assignment });
     expect(done.body.rows).toHaveLength(1);
+    expect(done.body.alreadyHad).toEqual([]);
+  });
+
+  test("who has the same for this use already is left as they are, whatever the size", async () => {
+    const site = await buildSite();
+    const { organizationId } = site;
+    const [holder, elsewhere, ending] = [
+      await buildWorker({ site }),
+      await buildWorker({ site }),
+      await buildWorker({ site }),
+    ];
+    const model = await buildProtector({ organizationId });
+    const task = await buildTask({ site });
+    const client = await as(organizationId, "officer");
+    const giveOne = async (workerId: string, body: object) => {
+      const answer = await client.post(`/workers/${workerId}/assignments`, {
+        innerModelId: model.id,
+        fromDate: "2026-01-01",
+        ...body,
+      });
+      expect(answer.status).toBe(201);
+      return answer.body.id as string;
+    };
+    const held = await giveOne(holder.id, { size: "M" });
+    await giveOne(elsewhere.id, { taskId: task.id });
+    await giveOne(ending.id, { toDate: "2026-12-31" });
+    const give = (workerIds: string[], more: object = {}) =>
+      client.post("/assignments/many", {
+        workerIds,
+        assignment: { innerModelId: model.id, fromDate: "2026-03-01", ...more },
+      });
+    // One that ends is not the same; the issue stands at the place in the request.
+    const refused = await give([holder.id, ending.id]);
+    expect(refused.body.issues).toMatchObject([
+      { path: ["workerIds", 1], code: "assignments-overlap" },
+    ]);
+    const given = await give([holder.id, elsewhere.id]);
+    expect(given.status).toBe(201);
+    expect(given.body).toMatchObject({
+      rows: [{ workerId: elsewhere.id, use: "everywhere" }],
+      alreadyHad: [holder.id],
+    });
+    const again = await give([holder.id, elsewhere.id]);
+    expect(again.body.rows).toEqual([]);
+    expect(again.body.alreadyHad.toSorted()).toEqual([holder.id, elsewhere.id].toSorted());
+    const standing = await select(
+      `SELECT id, size, revision, upper_inf(valid) AS "isOpen" FROM assignments WHERE worker_id = $1`,
+      [holder.id],
+    );
+    expect(standing).toEqual([{ id: held, size: "M", revision: 1, isOpen: true }]);
+    // Another size is another device: the one before ends.
+    expect((await give([holder.id], { size: "L" })).body.alreadyHad).toEqual([]);
   });
 
   test("an end moved back or forth moves the days between", async () => {

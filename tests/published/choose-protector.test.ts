@@ -134,7 +134,9 @@ describe("the order, one comparison after the other", () => {
     const banded = offer("banded", { bands: { meanDb: flat(24), sdDb: flat(2) } });
     // A mean of 26 with u = 4 is 22 for 84 %, and 26 − 1.645 · 4 = 19.42 for 95 %; the label is 20.72 for 95 %.
     const own = { parDb: 22, atRuleShareDb: 22, atLowerShareDb: 19.42 };
-    const fits = new Map([["own", { ...own, hasPassed: true, testedOn: "2026-01-05" }]]);
+    const fits = new Map([
+      ["own", { ...own, hasPassed: true, needDb: 15, testedOn: "2026-01-05" }],
+    ]);
     const inBands = new ProtectorChoice([banded, offer("own", { snrDb: 30 })], EU, ENERGY_LAW).for(
       wearer(100, { noises, fits }),
     );
@@ -144,7 +146,12 @@ describe("the order, one comparison after the other", () => {
     ]);
     expect(inBands[1]!.marginDb).toBeCloseTo(85 - (100 - 19.42), 9);
     expect(inBands[1]!.marginSharePct).toBe(95);
-    expect(inBands[1]!.lastFit).toEqual({ parDb: 22, hasPassed: true, testedOn: "2026-01-05" });
+    expect(inBands[1]!.lastFit).toEqual({
+      parDb: 22,
+      hasPassed: true,
+      needDb: 15,
+      testedOn: "2026-01-05",
+    });
 
     // Stated for 95 %: behind a single number, which is for 84 %, it is not put because of that.
     const strict = { parDb: 20, atRuleShareDb: 23, atLowerShareDb: 20 };
@@ -152,7 +159,11 @@ describe("the order, one comparison after the other", () => {
       [offer("single", { snrDb: 22 }), offer("own", { snrDb: 30 })],
       EU,
       ENERGY_LAW,
-    ).for(wearer(100, { fits: new Map([["own", { ...strict, hasPassed: true, testedOn: "" }]]) }));
+    ).for(
+      wearer(100, {
+        fits: new Map([["own", { ...strict, hasPassed: true, needDb: 15, testedOn: "" }]]),
+      }),
+    );
     expect(byNumber.map(({ modelId }) => modelId)).toEqual(["own", "single"]);
     expect(byNumber[0]!.marginDb).toBeCloseTo(8, 9);
     expect(byNumber[0]!.marginSharePct).toBeNull();
@@ -169,8 +180,8 @@ describe("the order, one comparison after the other", () => {
       batteryMin,
     });
     const fits = new Map([
-      ["failed", { parDb: 22, hasPassed: false, testedOn: "2026-01-05" }],
-      ["passed", { parDb: 22, hasPassed: true, testedOn: "2026-01-05" }],
+      ["failed", { parDb: 22, hasPassed: false, needDb: 15, testedOn: "2026-01-05" }],
+      ["passed", { parDb: 22, hasPassed: true, needDb: 15, testedOn: "2026-01-05" }],
     ]);
     const found = order(
       [
@@ -319,7 +330,9 @@ test("property: every level is the one that the day's engine has, for any data a
         const inner = buildProtector({ modelId: "a", ...label, hDb, mDb, lDb });
         const outer = isDouble ? buildProtector({ modelId: "b", usRatingDb: 20 }) : null;
         const fits = new Map(
-          parDb === null ? [] : [["a", { parDb, hasPassed: null, testedOn: "2026-01-05" }]],
+          parDb === null
+            ? []
+            : [["a", { parDb, hasPassed: null, needDb: 15, testedOn: "2026-01-05" }]],
         );
         const [found] = new ProtectorChoice(
           [offer("a", {}, { inner, outer, combinationBands })],

@@ -52,6 +52,8 @@ export interface OwnFit {
   readonly atRuleShareDb?: number;
   readonly atLowerShareDb?: number;
   readonly hasPassed: boolean | null;
+  /** What the noise asked for when it was tested, dB. Null: not known. */
+  readonly needDb: number | null;
   /** ISO date. */
   readonly testedOn: string;
 }
@@ -112,7 +114,7 @@ export interface RankedProtector {
   readonly marginDb: number | null;
   /** Users protected by that much, percent; null: the share that the rule's own method protects. */
   readonly marginSharePct: number | null;
-  readonly lastFit: Pick<OwnFit, "parDb" | "hasPassed" | "testedOn"> | null;
+  readonly lastFit: Pick<OwnFit, "parDb" | "hasPassed" | "needDb" | "testedOn"> | null;
   readonly batteryMin: number | null;
   readonly batteryLasts: boolean | null;
   readonly stock: number | null;
@@ -465,7 +467,12 @@ function shownAs(
     scaleIn: atEar?.scaleIn ?? null,
     marginDb: marginOf(judged, hasLower),
     marginSharePct: hasLower ? LOWER_CONFIDENCE_PCT : null,
-    lastFit: fit && { parDb: fit.parDb, hasPassed: fit.hasPassed, testedOn: fit.testedOn },
+    lastFit: fit && {
+      parDb: fit.parDb,
+      hasPassed: fit.hasPassed,
+      needDb: fit.needDb,
+      testedOn: fit.testedOn,
+    },
     batteryMin: offer.inner.active?.batteryMin ?? null,
     batteryLasts,
     stock: offer.stock,

@@ -60,10 +60,22 @@ export function GiveForm({
       workerIds: [],
     },
   });
-  const chosen = form.watch("workerIds");
+  const [use, fromDate] = form.watch(["use", "fromDate"]);
+  const hasIt = ({ holds }: Wearer) =>
+    holds.some(
+      (one) =>
+        one.use === use &&
+        one.modelId === candidate.modelId &&
+        one.outerModelId === candidate.outerModelId &&
+        one.fromDate <= fromDate,
+    );
+  const holders = new Set(wearers.filter(hasIt).map(({ id }) => id));
+  const chosen = form.watch("workerIds").filter((id) => !holders.has(id));
   const choose = (workerIds: string[]) =>
     form.setValue("workerIds", workerIds, { shouldDirty: true, shouldValidate: chosen.length > 0 });
-  const free = wearers.filter((wearer) => conflictOf(wearer) === null);
+  const free = wearers.filter(
+    (wearer) => conflictOf(wearer) === null && !holders.has(wearer.id),
+  );
   const { errors } = form.formState;
   const issueOf = (workerId: string): string | undefined => {
     const index = sent.indexOf(workerId);
@@ -75,16 +87,22 @@ export function GiveForm({
   return (
     <Form
       aria-label={i18n.t("Give {protector}", { protector: candidate.name })}
-      onSubmit={form.handleSubmit(({ use, fromDate, workerIds }) => {
+      onSubmit={form.handleSubmit((filled) => {
         if (assign.isPending) return;
+        // Chosen before the date or the use was changed to one for which they have it.
+        const workerIds = filled.workerIds.filter((id) => !holders.has(id));
+        if (workerIds.length === 0) {
+          form.setError("workerIds", { type: "custom", message: "too_small" });
+          return;
+        }
         const body = {
           workerIds,
           assignment: {
-            taskId: use === "subject" && subject.kind === "task" ? subject.id : null,
+            taskId: filled.use === "subject" && subject.kind === "task" ? subject.id : null,
             areaId: null,
             innerModelId: candidate.modelId,
             outerModelId: candidate.outerModelId,
-            fromDate,
+            fromDate: filled.fromDate,
             toDate: null,
             size: null,
             audioDb: null,
@@ -96,7 +114,7 @@ export function GiveForm({
           {
             onSuccess: () => {
               changeKey.forget();
-              onGiven(workerIds, fromDate);
+              onGiven(workerIds, filled.fromDate);
             },
             onError: (error) => {
               showIssuesOn(
@@ -152,6 +170,14 @@ export function GiveForm({
             )}
           </>
         )}
+        {holders.size > 0 && (
+          <span className="beneath">
+            {i18n.t(
+              "{count, plural, one {# has it already and is left as it is} other {# have it already and are left as they are}}",
+              { count: holders.size },
+            )}
+          </span>
+        )}
       </p>
       {errors.workerIds?.message && (
         <p className="field-error" role="alert">
@@ -182,7 +208,7 @@ export function GiveForm({
                   <input
                     type="checkbox"
                     checked={chosen.includes(wearer.id)}
-                    disabled={conflict !== null}
+                    disabled={conflict !== null || holders.has(wearer.id)}
                     onChange={(event) =>
                       choose(
                         event.target.checked
@@ -194,7 +220,9 @@ export function GiveForm({
                   <span className="two-lines">
                     {wearer.name}
                     <span className="beneath">
-                      {conflict === null
+                      {holders.has(wearer.id)
+                        ? i18n.t("has it already")
+                        : conflict === null
                         ? [wearer.employeeNumber, wearer.crewName].filter(Boolean).join(", ")
                         : i18n.t("not with {gear}", { gear: gearWord(i18n, conflict) })}
                     </span>
@@ -222,7 +250,7 @@ export function GiveForm({
                 <span className="two-lines">
                   <span className="mono">{formatLevel(fit.parDb, locale)}</span>
                   <span className={fit.hasPassed === false ? "is-fault" : "beneath"}>
-                    {passWord(i18n, fit.hasPassed)}
+                    {passWord(i18n, fit)}
                   </span>
                 </span>
               ) : (

@@ -1,6 +1,6 @@
 import { queryOptions, useMutation, useQueryClient } from "@tanstack/react-query";
 import { IssueSlips, ProtectorChoiceView } from "../../../shared/schemas/choice";
-import { AssignmentList, type ManyAssignmentsInput } from "../../../shared/schemas/worker";
+import { ManyAssigned, type ManyAssignmentsInput } from "../../../shared/schemas/worker";
 import { api } from "../../lib/api";
 
 export const choiceQueries = {
@@ -26,7 +26,7 @@ export function useAssignMany() {
   const client = useQueryClient();
   return useMutation({
     mutationFn: ({ body, key }: { body: ManyAssignmentsInput; key: string }) =>
-      api.post("/assignments/many", { body, schema: AssignmentList, idempotencyKey: key }),
+      api.post("/assignments/many", { body, schema: ManyAssigned, idempotencyKey: key }),
     onSuccess: () =>
       Promise.all([
         client.invalidateQueries({ queryKey: ["workers"] }),

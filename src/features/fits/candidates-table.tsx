@@ -141,7 +141,7 @@ export function CandidatesTable({
           <span className="two-lines">
             <span className="mono">{formatLevel(lastFit.parDb, locale)}</span>
             <span className={lastFit.hasPassed === false ? "is-fault" : "beneath"}>
-              {passWord(i18n, lastFit.hasPassed)}
+              {passWord(i18n, lastFit)}
             </span>
             {labelLess7Db !== null && (
               <span className="beneath wide:whitespace-nowrap">{less7(labelLess7Db)}</span>

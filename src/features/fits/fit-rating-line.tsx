@@ -55,7 +55,9 @@ export function FitRatingLine({
         <span className="fit-par">
           {i18n.t("PAR {par} dB", { par: formatLevel(parDb, locale) })}
         </span>{" "}
-        <b className={hasPassed === false ? "reversed" : "fit-pass"}>{passWord(i18n, hasPassed)}</b>
+        <b className={hasPassed === false ? "reversed" : "fit-pass"}>
+          {passWord(i18n, { hasPassed, needDb })}
+        </b>
       </Status>
       <p>
         {isOneEar

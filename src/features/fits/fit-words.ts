@@ -40,7 +40,7 @@ export const activeWord = (i18n: I18n, { activePassed }: FitTestView): string =>
 export const saysWord = (i18n: I18n, test: FitTestView): string =>
   test.parDb === null && test.activePassed !== null
     ? startsSentence(activeWord(i18n, test))
-    : passWord(i18n, test.needDb === null || hasToPass(test.needDb) ? test.hasPassed : null);
+    : passWord(i18n, test);
 
 export const isFault = ({ isVoid, hasPassed, needDb, parDb, activePassed }: FitTestView): boolean =>
   !isVoid &&

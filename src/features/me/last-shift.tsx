@@ -3,6 +3,7 @@ import { useLingui } from "@lingui/react";
 import { lazy, Suspense } from "react";
 import { formatDay } from "../../../shared/format/date";
 import { formatLimit, formatWholeLevel } from "../../../shared/format/level";
+import { startsSentence } from "../../../shared/format/words";
 import type { Locale } from "../../../shared/i18n/index";
 import { Empty } from "../../components/empty";
 import { stripOfDay } from "../../components/strip-of-day";
@@ -100,7 +101,7 @@ export function LastShift({
   return (
     <>
       <p>
-        <Emphasis text={lastShiftSentence(i18n, locale, day)} />
+        <Emphasis text={startsSentence(lastShiftSentence(i18n, locale, day))} />
       </p>
       {(day.atEarDb !== null || day.outsideDb !== null) && (
         <div className="me-strip">
@@ -114,7 +115,12 @@ export function LastShift({
       )}
       {day.hasProtector !== "no" && day.origin === "computed" && (
         <Suspense fallback={<p>&nbsp;</p>}>
-          <OwnSaid workerId={workerId} lastDate={day.date} today={today} />
+          <OwnSaid
+            workerId={workerId}
+            lastDate={day.date}
+            hasFigure={day.atEarDb !== null}
+            today={today}
+          />
         </Suspense>
       )}
     </>

@@ -4,7 +4,7 @@ import { formatDate } from "../../../shared/format/date";
 import { addDays } from "../../../shared/time/zone";
 import { TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
-import { saidWords } from "../../lib/wearing-answers";
+import { isClearlyLess, keptBesideWords, saidWords } from "../../lib/wearing-answers";
 import { OWN_REPORT, paths } from "../../paths";
 import { ownQueries } from "./queries";
 
@@ -15,10 +15,13 @@ const SHOWN_DAYS = 14;
 export function OwnSaid({
   workerId,
   lastDate,
+  hasFigure,
   today,
 }: {
   workerId: string;
   lastDate: string;
+  /** Whether a level at the ear stands above for the last shift. */
+  hasFigure: boolean;
   today: string;
 }) {
   const { i18n } = useLingui();
@@ -47,12 +50,20 @@ export function OwnSaid({
           </TextLink>
         </p>
       );
+    const beside = keptBesideWords(
+      i18n,
+      said.map(({ taskName, statedPct }) => ({ name: taskName, statedPct })),
+    );
     return (
       <div key={date} className="me-said">
+        {date === lastDate && hasFigure && said.some(isClearlyLess) && (
+          <p>{i18n.t("You said you did not wear it all the time: with that it would be more.")}</p>
+        )}
         <p>
           {i18n.t("Worn on {day}, as you said:", { day })}{" "}
           {said.map((one) => `${one.taskName}: ${saidWords(i18n, one)}`).join("; ")}.
         </p>
+        {beside && <p className="me-note">{beside}</p>}
         <TextLink className="me-list-link" to={to}>
           {said.some(({ canChange }) => canChange) ? i18n.t("Say it anew") : i18n.t("Look")}
           <span className="sr-only">{`, ${day}`}</span>

@@ -30,11 +30,16 @@ export function ActivePart({ active }: { active: NonNullable<ProtectorFacts["act
               })
             : null,
     },
-    {
-      key: "break-even",
-      label: i18n.t("Adds noise from"),
-      value: endsHz === null ? null : `${formatNumber(endsHz, 0, locale)} Hz`,
-    },
+    // Of a test report the bands below say where it does.
+    ...(endsHz === null
+      ? []
+      : [
+          {
+            key: "break-even",
+            label: i18n.t("Adds noise from"),
+            value: `${formatNumber(endsHz, 0, locale)} Hz`,
+          },
+        ]),
     {
       key: "maximum",
       label: i18n.t("At most"),

@@ -7,7 +7,7 @@ import { Button } from "../../components/button";
 import { Section } from "../../components/page";
 import { useLocale } from "../../lib/i18n";
 import { useMoveFocus } from "../../lib/move-focus";
-import { saidWords } from "../../lib/wearing-answers";
+import { isStated, keptBesideWords, saidWords } from "../../lib/wearing-answers";
 import { OWN_REPORT } from "../../paths";
 import { OwnReportForm } from "./own-report-form";
 
@@ -22,7 +22,11 @@ export function OwnSaid({
   workerId: string;
   siteId: string;
   date: string;
-  tasks: readonly { readonly id: string; readonly name: string }[];
+  tasks: readonly {
+    readonly id: string;
+    readonly name: string;
+    readonly statedPct: number | null;
+  }[];
   said: OwnReports["rows"];
 }) {
   const { i18n } = useLingui();
@@ -40,17 +44,22 @@ export function OwnSaid({
   const askable = tasks.filter(
     ({ id }) => !said.some(({ taskId, canChange }) => taskId === id && !canChange),
   );
+  const beside = keptBesideWords(i18n, tasks);
+  const isAllStated = tasks.every(isStated);
   const isChangeable = askable.length > 0;
   return (
     <Section title={i18n.t("How long did you wear it?")} id={OWN_REPORT}>
       <div ref={place}>
         {isKept && (
           <p className="own-kept" tabIndex={-1}>
-            {i18n.t(
-              "Thank you, that is noted. The days that rest on it are being worked out again.",
-            )}
+            {isAllStated
+              ? i18n.t("Thank you, that is noted.")
+              : i18n.t(
+                  "Thank you, that is noted. The days that rest on it are being worked out again.",
+                )}
           </p>
         )}
+        {beside && <p>{beside}</p>}
         {!isOpen && last && (
           <>
             <p>
@@ -92,11 +101,17 @@ export function OwnSaid({
         )}
         {isOpen && (
           <>
-            <p className="beneath">
-              {said.length > 0
-                ? i18n.t("What you send takes the place of what you said before of this day.")
-                : i18n.t("It counts together with what was seen, where nobody wrote it down.")}
-            </p>
+            {said.length > 0 ? (
+              <p className="beneath">
+                {i18n.t("What you send takes the place of what you said before of this day.")}
+              </p>
+            ) : (
+              !isAllStated && (
+                <p className="beneath">
+                  {i18n.t("It counts together with what was seen, where nobody wrote it down.")}
+                </p>
+              )
+            )}
             <OwnReportForm
               workerId={workerId}
               siteId={siteId}
