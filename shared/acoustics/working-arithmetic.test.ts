@@ -475,6 +475,7 @@ function check(
     if (result.levelDb === null) continue;
     expect(levels.some((db) => Math.abs(db - result.levelDb!) < 1e-7)).toBe(true);
   }
+  checkWhileWorn(working, evaluation);
   const atEar = step("The day at the ear");
   if (atEar && evaluation.atEarDb !== null) {
     checkDayAtEar(
@@ -488,6 +489,89 @@ function check(
     );
   }
 }
+
+/** The head's figure while worn is what an equation of the deciding task ends in, by its sign, and its row's. */
+function checkWhileWorn(working: Working, evaluation: ReturnType<typeof evaluateDay>): void {
+  const head = working.lines.find(({ id }) => id === "protector")?.level;
+  if (!head) return;
+  const worn = working.steps.find(({ title }) => title.id.startsWith("What the protector does"))!;
+  const name = worn.tables[0]!.rows.find(({ id }) => id === evaluation.decidingTaskId)!.cells[0];
+  const relation = boundSign(head);
+  const found = worn.equations.filter(
+    (equation) =>
+      JSON.stringify(equation.label) === JSON.stringify(name) &&
+      Math.abs(resultOf(equation) - numberOf(head)) < 1e-7,
+  );
+  expect(found.map(({ parts }) => parts.find(isRelation))).toContainEqual({
+    kind: "sign",
+    text: relation,
+  });
+  const row = rowsOf(worn.tables[0]!).find(
+    ({ cells }) => JSON.stringify(cells.task) === JSON.stringify(name),
+  )!;
+  // With the active part on where it is credited.
+  const cells = [row.cells["while-worn"], row.cells["while-worn-on"]].flatMap((cell) => cell ?? []);
+  const alike = cells.filter((cell) => Math.abs(numberOf(cell) - numberOf(head)) < 1e-7);
+  expect(alike.map(boundSign)).toContain(relation);
+  for (const { cells } of rowsOf(worn.tables[0]!)) expect(cells.device).not.toBeNull();
+}
+
+const boundSign = (of: WorkingValue): string =>
+  of.kind === "level" && of.bound ? (of.bound === "upper" ? "≤" : "≥") : "=";
+
+test("an average from 90 dB under a rule at 80: the level counted, what the protector leaves of it, and both steps alike", () => {
+  // 16.61 lg(10^(93.5/16.61) + 10^(90/16.61)) = 96.96.
+  const pair = buildProtection(
+    { name: "Foam plug", usRatingDb: 25 },
+    { outer: buildProtector({ modelId: "outer", name: "Cup muff", usRatingDb: 22 }) },
+  );
+  const day = dayOf(
+    buildTask("cutting", 200, buildLevel(93.5, { metric: lavg5(90) }), {
+      protection: buildProtection({ usRatingDb: 25 }),
+      wornPct: 90,
+    }),
+    buildTask("blasting", 20, buildLevel(90.2, { metric: lavg5(90) }), {
+      protection: pair,
+      wornPct: 100,
+    }),
+    buildTask("packing", 260, buildLevel(76, { metric: STEADY })),
+  );
+  const ruleSet = RULE_SETS.find(({ key }) => key === "us-general-industry")!;
+  const working = buildWorking(day, ruleSet, []);
+  const step = (title: string) => working.steps.find(({ title: { id } }) => id.startsWith(title))!;
+  const worn = step("What the protector does");
+  const cutting = worn.equations.filter(
+    ({ label }) => label?.kind === "name" && label.name === "cutting",
+  );
+  const countedDb = LAVG_FACTOR * Math.log10(10 ** (93.5 / LAVG_FACTOR) + 10 ** (90 / LAVG_FACTOR));
+  const [recorded, counted, left] = cutting.map(resultOf);
+  near(counted!, countedDb);
+  near(left!, countedDb - (93.5 - recorded!));
+  const head = working.lines.find(({ id }) => id === "protector")!.level;
+  expect(head).toEqual({ kind: "level", db: expect.closeTo(left!, 9), bound: "upper" });
+  const [first, second, third] = rowsOf(worn.tables[0]!).map(({ cells }) => cells);
+  expect(first!["while-worn"]).toEqual(head);
+  expect(first!.device).toEqual({ kind: "name", name: "Plain muff" });
+  expect(second!.device).toMatchObject({
+    text: {
+      id: "{inner} under {outer}",
+      values: { inner: { name: "Foam plug" }, outer: { name: "Cup muff" } },
+    },
+  });
+  expect(third!.device).toMatchObject({ text: { id: "not worn" } });
+  // The word is the shift's: no task has one.
+  expect(Object.keys(first!)).not.toContain("word");
+  const rows = rowsOf(step("The day at the ear").tables[0]!).flatMap(({ cells, isTotal }) =>
+    isTotal ? [] : [cells],
+  );
+  expect(rows.map((cells) => boundSign(cells["in-task"]!))).toEqual(["≤", "≤", "="]);
+  for (const [index, cells] of [first!, second!].entries()) {
+    near(read(rows[index]!, "in-task")!, read(cells, "in-task")!);
+    expect(boundSign(cells["in-task"]!)).toBe("≤");
+  }
+});
+
+const LAVG_FACTOR = 5 / Math.log10(2);
 
 test("an average of 5 dB from 80 dB under the general industry rule: by hand, 91.2 dB for 300 min and 86.4 for 180", () => {
   // Action level, threshold 80: 480/2^(1.2/5) = 406.43 min allowed; 86.4 from 90 dB may hide up to 90 dB:

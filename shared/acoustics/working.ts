@@ -848,9 +848,10 @@ class Builder {
     return this.wornTasks().flatMap(({ atEar, task, level: of, protection }) => {
       const bands = bandTable(of, protection, rule, atEar);
       const others = atEar.methods.filter(({ method }) => method !== atEar.governingMethod);
+      const isMoved = this.asCounted(atEar).usedDb !== of.levelDb;
       const equations = others.flatMap((other) =>
         methodLines(of, protection, rule, other).map((parts) =>
-          line(parts, { kind: "method", method: other.method }),
+          line(isMoved ? onRecord(parts) : parts, { kind: "method", method: other.method }),
         ),
       );
       return [
@@ -1026,14 +1027,21 @@ class Builder {
             ...on.flatMap(([title, db], index) =>
               db === null
                 ? []
-                : [row(`active-${index}`, [{ kind: "text", text: title }, level(db), null, null])],
+                : [
+                    row(`active-${index}`, [
+                      words(title),
+                      boundedLevel(db, this.atEarBound()),
+                      null,
+                      null,
+                    ]),
+                  ],
             ),
             ...(counted
               ? [
                   {
                     ...row("counted", [
                       words(this.countedTitle()),
-                      level(counted.atEarDb),
+                      boundedLevel(counted.atEarDb, this.atEarBound()),
                       null,
                       words(text(/*i18n*/ "counts, by the site’s policy and the check")),
                     ]),
@@ -1496,7 +1504,7 @@ class Builder {
       return {
         ...row(method, [
           { kind: "method", method },
-          level(isSole && governs ? evaluation.atEarDb : db),
+          boundedLevel(isSole && governs ? evaluation.atEarDb : db, this.atEarBound()),
           cited(this.methodSources(method)),
           governs
             ? { kind: "text", text: text(/*i18n*/ "governs at this site") }

@@ -1,6 +1,7 @@
 import { useLingui } from "@lingui/react";
 import { useInfiniteQuery, useQuery } from "@tanstack/react-query";
 import { useState } from "react";
+import { formatNumber } from "../../shared/format/number";
 import { Button } from "../components/button";
 import { Empty } from "../components/empty";
 import { FilterRow, FilterSelect } from "../components/filter-row";
@@ -12,6 +13,7 @@ import { ReplacementsTable } from "../features/stock/replacements-table";
 import { StockForm } from "../features/stock/stock-form";
 import { StockTable } from "../features/stock/stock-table";
 import { isShort, moveWord, partWord } from "../features/stock/stock-words";
+import { useLocale } from "../lib/i18n";
 import { useMoveFocus } from "../lib/move-focus";
 import { ProtectorWays } from "./protector-frame";
 import { useSiteChoice } from "./site-choice";
@@ -21,6 +23,7 @@ import "../styles/worker.css";
 /** What the sites have of protectors and their parts, what wants changing, and what came and went. */
 export function Component() {
   const { i18n } = useLingui();
+  const locale = useLocale();
   const choice = useSiteChoice();
   const { site, sites, isOfficer } = choice;
   const siteId = site?.id;
@@ -64,6 +67,7 @@ export function Component() {
                 onClick={() => {
                   setSaid("");
                   setEntering(true);
+                  moveFocus("form select, form input");
                 }}
               >
                 {i18n.t("Enter stock")}
@@ -84,7 +88,8 @@ export function Component() {
               onSaved={(move) => {
                 setEntering(false);
                 setSaid(
-                  i18n.t("Saved: {protector}, {part}, {kind}.", {
+                  i18n.t("Saved: {protector}, {part}, {kind}: {count}.", {
+                    count: formatNumber(move.quantity, 0, locale),
                     protector: move.modelName,
                     part: partWord(i18n, move.part),
                     kind: moveWord(i18n, move.kind),

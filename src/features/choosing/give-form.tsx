@@ -73,9 +73,7 @@ export function GiveForm({
   const chosen = form.watch("workerIds").filter((id) => !holders.has(id));
   const choose = (workerIds: string[]) =>
     form.setValue("workerIds", workerIds, { shouldDirty: true, shouldValidate: chosen.length > 0 });
-  const free = wearers.filter(
-    (wearer) => conflictOf(wearer) === null && !holders.has(wearer.id),
-  );
+  const free = wearers.filter((wearer) => conflictOf(wearer) === null && !holders.has(wearer.id));
   const { errors } = form.formState;
   const issueOf = (workerId: string): string | undefined => {
     const index = sent.indexOf(workerId);
@@ -153,6 +151,14 @@ export function GiveForm({
             { count: chosen.length },
           )}
         </b>{" "}
+        {holders.size > 0 && (
+          <span className="beneath">
+            {i18n.t(
+              "{count, plural, one {# has it already and is left as it is} other {# have it already and are left as they are}}",
+              { count: holders.size },
+            )}
+          </span>
+        )}{" "}
         {free.length > 0 && (
           <>
             <TextButton onClick={() => choose(free.map(({ id }) => id))}>
@@ -169,14 +175,6 @@ export function GiveForm({
               <TextButton onClick={() => choose([])}>{i18n.t("Choose nobody")}</TextButton>
             )}
           </>
-        )}
-        {holders.size > 0 && (
-          <span className="beneath">
-            {i18n.t(
-              "{count, plural, one {# has it already and is left as it is} other {# have it already and are left as they are}}",
-              { count: holders.size },
-            )}
-          </span>
         )}
       </p>
       {errors.workerIds?.message && (
@@ -223,8 +221,8 @@ export function GiveForm({
                       {holders.has(wearer.id)
                         ? i18n.t("has it already")
                         : conflict === null
-                        ? [wearer.employeeNumber, wearer.crewName].filter(Boolean).join(", ")
-                        : i18n.t("not with {gear}", { gear: gearWord(i18n, conflict) })}
+                          ? [wearer.employeeNumber, wearer.crewName].filter(Boolean).join(", ")
+                          : i18n.t("not with {gear}", { gear: gearWord(i18n, conflict) })}
                     </span>
                     {issueOf(wearer.id) && (
                       <span className="field-error">{issueOf(wearer.id)}</span>

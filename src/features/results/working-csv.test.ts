@@ -47,8 +47,8 @@ const input: DayInput = {
   mustWear: false,
 };
 
-function lines(): string[][] {
-  const working = buildWorking(input, ruleSetVersion("uk-2005", 1)!, []);
+function lines(day = input, ruleSet = "uk-2005"): string[][] {
+  const working = buildWorking(day, ruleSetVersion(ruleSet, 1)!, []);
   return parse(workingCsv(testI18n(), "en", working, "0a1b2c3d"), { relax_column_count: false });
 }
 
@@ -59,6 +59,53 @@ test("numbers stand unrounded with their unit: LEX,8h = 10 lg(2/8·10^10 + 6/8·
   expect(Number(found?.[6])).toBeCloseTo(93.9924, 4);
   expect(String(found?.[6]).length).toBeGreaterThan(8);
   expect(found?.[7]).toBe("dB");
+});
+
+test("a level of a table that is only a bound has its side in the line after it: 93.5 from 90 dB counts as 96.96, less 24", () => {
+  const metric = {
+    kind: "lavg",
+    settings: {
+      criterionLevelDb: 90,
+      exchangeRateDb: 5,
+      thresholdDb: 90,
+      weighting: "A",
+      response: "slow",
+    },
+  } as const;
+  const inner = {
+    modelId: "m",
+    revisionId: null,
+    name: "Plain muff",
+    kind: "earmuff",
+    usRatingDb: 25,
+    snrDb: null,
+    hDb: null,
+    mDb: null,
+    lDb: null,
+    slc80Db: null,
+    bands: null,
+    active: null,
+  } as const;
+  const cutting = {
+    ...task("c", "Cutting", 93.5, 480),
+    level: { ...level(93.5), metric, lcMinusLaDb: 1 },
+    protection: {
+      assignmentId: null,
+      inner,
+      outer: null,
+      combinationBands: null,
+      ownFitDb: null,
+      activeCheckPassed: false,
+    },
+    wornPct: 100,
+  };
+  const day = { ...input, shifts: [{ ...input.shifts[0]!, tasks: [cutting] }] };
+  const all = lines(day, "us-general-industry");
+  const at = all.findIndex(
+    ([, , , part, row, column]) => part === "table" && row === "Cutting" && column === "While worn",
+  );
+  expect(Number(all[at]?.[6])).toBeCloseTo(72.96, 2);
+  expect(all[at + 1]?.slice(3, 7)).toEqual(["bound", "Cutting", "While worn", "upper"]);
 });
 
 test("a name that looks like a formula is marked as text, and the last line counts the others", () => {

@@ -81,7 +81,10 @@ export function workingCsv(
       const [first] = row.cells;
       const name = first ? workingValueText(i18n, locale, first) : row.id;
       row.cells.forEach((cell, index) => {
-        if (index > 0) add(step, title, "table", `${about}${name}`, heads[index] ?? "", cell);
+        if (index === 0) return;
+        add(step, title, "table", `${about}${name}`, heads[index] ?? "", cell);
+        if (cell?.kind === "level" && cell.bound)
+          add(step, title, "bound", `${about}${name}`, heads[index] ?? "", text(cell.bound));
       });
     }
   };
