@@ -32,6 +32,7 @@ export async function orLastSeen<T extends object>(
   name: string,
   ask: () => Promise<T>,
 ): Promise<Seen<T>> {
+  const askedFor = keeperId;
   const kept =
     keeperId === null
       ? null
@@ -45,6 +46,8 @@ export async function orLastSeen<T extends object>(
         });
   try {
     const state = await ask();
+    // Whoever asked may have signed out meanwhile: nothing of theirs is written then.
+    if (keeperId !== askedFor) return { ...state, asOf: null };
     // Anew as the last one: what was not looked at for longest goes first.
     kept?.remove(name);
     kept?.put({ name, at: new Date().toISOString(), state });

@@ -33,6 +33,9 @@ function rememberWhoIsHere(session: Pick<SessionView, "user">): void {
   }
 }
 
+/** An answer that comes after the sign-out was asked for before: nothing is remembered of it any more. */
+let hasSignedOut = false;
+
 function whoWasHere(): SessionView | null {
   try {
     return sessionReply.parse(JSON.parse(localStorage.getItem(HERE) ?? "null"));
@@ -48,7 +51,7 @@ async function askWhoIsHere(signal: AbortSignal): Promise<SessionView> {
       signal,
       asksWhoIsThere: true,
     });
-    rememberWhoIsHere(session);
+    if (!hasSignedOut) rememberWhoIsHere(session);
     return session;
   } catch (error) {
     const last = isUnreached(error) ? whoWasHere() : null;
@@ -80,6 +83,7 @@ export async function signOut(userId?: string): Promise<void> {
   const { redirectTo } = await api.post("/auth/sign-out", {
     schema: { parse: (value) => value as { redirectTo: string } },
   });
+  hasSignedOut = true;
   forgetTyped();
   if (userId !== undefined) forgetKept(localStorage, userId);
   rememberWhoIsHere({ user: null });
