@@ -1,8 +1,8 @@
 import type { NextFunction, Request, RequestHandler, Response } from "express";
 import type { TokenScope } from "../../shared/schemas/api-token";
-import { organizationOfSecret, secretHash } from "../commands/make-calendar-feed";
 import { execute, inTransaction, row } from "../lib/db";
 import { AppError } from "../lib/errors";
+import { organizationOfSecret, secretHash } from "../lib/secret";
 import { loadActor } from "./actor";
 import { UnfinishedTries } from "./rate-limit";
 

@@ -5,8 +5,8 @@ import { todayAt } from "../lib/calendar";
 import { execute, inTransaction, row } from "../lib/db";
 import { AppError, issue, notFound, unprocessable } from "../lib/errors";
 import type { Actor } from "../lib/policy";
+import { secretHash } from "../lib/secret";
 import type { LetterHead } from "../queries/letters";
-import { hashSecret } from "./link-letter";
 
 interface Opened {
   letterId: string;
@@ -39,7 +39,7 @@ async function atLink<T>(
   isChange: boolean,
   work: (opened: Opened, organizationId: string) => Promise<T>,
 ): Promise<T> {
-  const hash = hashSecret(secret);
+  const hash = secretHash(secret).toString("hex");
   const link = await inTransaction({ settings: { "app.letter_link": hash }, readOnly: true }, () =>
     row<{ organizationId: string }>(
       `SELECT organization_id AS "organizationId" FROM letter_links WHERE secret_hash = :hash`,

@@ -41,10 +41,11 @@ export async function followGroups(
   );
   const granted = wanted.filter(({ id }) => !held.some(({ mappingId }) => mappingId === id));
   const lost = held.filter(({ mappingId }) => !wanted.some(({ id }) => id === mappingId));
-  for (const { id, role, siteId } of granted)
+  if (granted.length > 0)
     await execute(
-      "INSERT INTO role_grants (organization_id, user_id, role, site_id, mapping_id) VALUES ($1, $2, $3, $4, $5)",
-      [user.organizationId, user.id, role, siteId, id],
+      `INSERT INTO role_grants (organization_id, user_id, role, site_id, mapping_id)
+       SELECT m.organization_id, $1, m.role, m.site_id, m.id FROM group_mappings m WHERE m.id = ANY ($2::uuid[])`,
+      [user.id, granted.map(({ id }) => id)],
     );
   const kept = (await leavesNobody(user.organizationId, lost))
     ? lost.filter(({ role }) => role === "administrator")

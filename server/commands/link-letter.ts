@@ -1,6 +1,7 @@
-import { createHash, randomBytes } from "node:crypto";
+import { randomBytes } from "node:crypto";
 import type { Mail } from "../emails/frame";
 import { execute } from "../lib/db";
+import { secretHash } from "../lib/secret";
 
 /** Where a letter's link leads. */
 export const LETTER_PATH = "/acknowledge/";
@@ -8,9 +9,6 @@ export const LETTER_PATH = "/acknowledge/";
 export const HIDDEN_SECRET = "…";
 /** A link is good for so long. */
 const LINK_DAYS = 60;
-
-export const hashSecret = (secret: string): string =>
-  createHash("sha256").update(secret).digest("hex");
 
 /**
  * A mail of results with a link of its own in it. Each attempt to send gets another: only hashes are kept, so none can be
@@ -21,7 +19,7 @@ export async function linkLetter(noticeId: string, mail: Mail): Promise<Mail> {
   await execute(
     `INSERT INTO letter_links (secret_hash, organization_id, letter_id, expires_at)
      SELECT $2, l.organization_id, l.id, now() + interval '${LINK_DAYS} days' FROM result_letters l WHERE l.notice_id = $1`,
-    [noticeId, hashSecret(secret)],
+    [noticeId, secretHash(secret).toString("hex")],
   );
   const linked = (text: string) =>
     text.replaceAll(`${LETTER_PATH}${HIDDEN_SECRET}`, `${LETTER_PATH}${secret}`);

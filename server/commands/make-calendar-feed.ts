@@ -1,19 +1,7 @@
-import { createHash } from "node:crypto";
 import { recordAudit } from "../lib/audit";
 import { execute } from "../lib/db";
 import type { Actor } from "../lib/policy";
-import { newSecret } from "../lib/secret";
-
-/** What is kept of a secret. */
-export const secretHash = (secret: string): Buffer => createHash("sha256").update(secret).digest();
-
-/** The organization that a secret was made in, which it begins with; null where it is none of ours. */
-export function organizationOfSecret(secret: string): string | null {
-  const bytes = Buffer.from(secret, "base64url");
-  if (bytes.length !== 40) return null;
-  const hex = bytes.subarray(0, 16).toString("hex");
-  return hex.replace(/^(.{8})(.{4})(.{4})(.{4})(.{12})$/, "$1-$2-$3-$4-$5");
-}
+import { newSecret, secretHash } from "../lib/secret";
 
 /** A private address for the actor's own calendar; one that there was before ends here. Gives its secret, once. */
 export async function makeCalendarFeed(actor: Actor): Promise<string> {

@@ -3,8 +3,7 @@ import { recordAudit } from "../lib/audit";
 import { execute, row } from "../lib/db";
 import { AppError, issue, unprocessable } from "../lib/errors";
 import type { Actor } from "../lib/policy";
-import { newSecret } from "../lib/secret";
-import { secretHash } from "./make-calendar-feed";
+import { newSecret, secretHash } from "../lib/secret";
 
 /** Working tokens that one person may have. */
 const AT_MOST = 20;

@@ -4,18 +4,14 @@ import { dutyWord } from "../../shared/findings/duty-words";
 import { createI18n, isLocale } from "../../shared/i18n";
 import { CalendarFeedMade, CalendarFeedView } from "../../shared/schemas/duty";
 import { loadActor } from "../auth/actor";
-import {
-  endCalendarFeed,
-  makeCalendarFeed,
-  organizationOfSecret,
-  secretHash,
-} from "../commands/make-calendar-feed";
+import { endCalendarFeed, makeCalendarFeed } from "../commands/make-calendar-feed";
 import type { Config } from "../config";
 import { type CalendarEntry, writeCalendar } from "../exports/icalendar";
 import { inTransaction, row } from "../lib/db";
 import { endpoint } from "../lib/endpoint";
 import { AppError, notFound } from "../lib/errors";
 import type { Actor } from "../lib/policy";
+import { organizationOfSecret, secretHash } from "../lib/secret";
 import { may } from "../policies";
 import { listDuties } from "../queries/duties";
 

@@ -9,6 +9,10 @@ export function isLocale(value: unknown): value is Locale {
   return LOCALES.some((locale) => locale === value);
 }
 
+/** The language that an i18n object speaks. */
+export const localeOf = ({ locale }: Pick<I18n, "locale">): Locale =>
+  isLocale(locale) ? locale : "en";
+
 /** The first language of an Accept-Language list (or of the browser's) that we speak; English where none is. */
 export function pickLocale(wanted: readonly string[]): Locale {
   for (const tag of wanted) {

@@ -1,7 +1,7 @@
 import type { I18n } from "@lingui/core";
 import { formatLevel, formatLevelChange } from "../format/level";
 import { decimalMark } from "../format/number";
-import { isLocale } from "../i18n/index";
+import { localeOf } from "../i18n/index";
 
 export interface FieldIssue {
   readonly code: string;
@@ -48,7 +48,7 @@ function formatText(i18n: I18n, format: unknown): string {
 }
 
 function figuresOf(i18n: I18n, { foundDb, offDb }: FieldIssue["params"]) {
-  const locale = isLocale(i18n.locale) ? i18n.locale : "en";
+  const locale = localeOf(i18n);
   return {
     found: formatLevel(Number(foundDb), locale),
     difference: formatLevelChange(Number(offDb), locale),
@@ -81,7 +81,7 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("Only whole steps count here.");
     case "ambiguous":
       return i18n.t("This can be read in two ways. Write decimals with a “{mark}”", {
-        mark: decimalMark(isLocale(i18n.locale) ? i18n.locale : "en"),
+        mark: decimalMark(localeOf(i18n)),
       });
     case "not-a-number":
       return i18n.t("This is not a number.");

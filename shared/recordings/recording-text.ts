@@ -1,10 +1,8 @@
 import type { I18n } from "@lingui/core";
 import { formatNumber } from "../format/number";
-import { isLocale, type Locale } from "../i18n/index";
+import { localeOf } from "../i18n/index";
 
 type Params = Readonly<Record<string, unknown>>;
-
-const localeOf = (i18n: I18n): Locale => (isLocale(i18n.locale) ? i18n.locale : "en");
 
 /** What is wrong with a recording or a calibrator's tone, and what to do; null: this code is of something else. */
 export function recordingText(i18n: I18n, code: string, params: Params): string | null {

@@ -1,7 +1,7 @@
 import type { I18n } from "@lingui/core";
 import { formatLevel } from "../../shared/format/level";
 import { withinSentence } from "../../shared/format/words";
-import { isLocale, type Locale } from "../../shared/i18n/index";
+import { type Locale, localeOf } from "../../shared/i18n/index";
 import type { StripFacts } from "./drop-strip-geometry";
 import { verdictWord } from "./verdict";
 
@@ -14,7 +14,7 @@ export interface StripWords extends StripFacts {
 
 /** What a strip says, for those who hear it. One function, so that it never says less than it shows. */
 export function stripLabel(i18n: I18n, props: StripWords): string {
-  const locale: Locale = isLocale(i18n.locale) ? i18n.locale : "en";
+  const locale: Locale = localeOf(i18n);
   const level = (levelDb: number) => formatLevel(levelDb, locale);
   const sentences: string[] = [];
 

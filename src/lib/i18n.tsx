@@ -6,6 +6,7 @@ import {
   createI18n,
   isLocale,
   type Locale,
+  localeOf,
   pickLocale,
 } from "../../shared/i18n/index";
 
@@ -78,7 +79,7 @@ export async function chooseLocale(i18n: I18n, locale: Locale): Promise<void> {
 
 export function useLocale(): Locale {
   const { i18n } = useLingui();
-  return isLocale(i18n.locale) ? i18n.locale : "en";
+  return localeOf(i18n);
 }
 
 export function LanguageProvider({ i18n, children }: { i18n: I18n; children: ReactNode }) {

@@ -1,7 +1,7 @@
 import { useLingui } from "@lingui/react";
 import { useQueryClient } from "@tanstack/react-query";
 import type { z } from "zod";
-import { isLocale, LOCALE_NAMES, LOCALES, type Locale } from "../../../shared/i18n/index";
+import { LOCALE_NAMES, LOCALES, type Locale, localeOf } from "../../../shared/i18n/index";
 import { UserChange, UserInput, UserView } from "../../../shared/schemas/user";
 import { ComboboxField } from "../../components/combobox-field";
 import { SelectField, TextField } from "../../components/form";
@@ -54,7 +54,7 @@ export function NewPersonForm({ sites, onSaved, onLeave }: FormProps) {
         email: null,
         expectedSubject: null,
         workerId: null,
-        language: isLocale(i18n.locale) ? i18n.locale : "en",
+        language: localeOf(i18n),
         grants: [{ role: "worker", siteId: sites.length === 1 ? (sites[0]?.id ?? null) : null }],
       }}
       toBody={({ email, expectedSubject, ...person }) => ({

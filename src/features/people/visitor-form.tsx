@@ -2,7 +2,7 @@ import { useLingui } from "@lingui/react";
 import { useMutation, useQueryClient } from "@tanstack/react-query";
 import { useWatch } from "react-hook-form";
 import { localDateOf } from "../../../shared/format/date";
-import { isLocale, LOCALE_NAMES, LOCALES } from "../../../shared/i18n/index";
+import { LOCALE_NAMES, LOCALES, localeOf } from "../../../shared/i18n/index";
 import type { SessionUser } from "../../../shared/schemas/session";
 import { VisitorInput, VisitorView } from "../../../shared/schemas/visitor";
 import {
@@ -48,7 +48,7 @@ export function VisitorForm({
       siteId: first?.id ?? "",
       year: String(thisYear),
       lastDay: null,
-      language: isLocale(i18n.locale) ? i18n.locale : "en",
+      language: localeOf(i18n),
     },
     keepAs: "/visitors new",
   });

@@ -3,7 +3,7 @@ import { useQueryClient } from "@tanstack/react-query";
 import type { UseFormReturn } from "react-hook-form";
 import { useWatch } from "react-hook-form";
 import type { z } from "zod";
-import { isLocale, LOCALE_NAMES } from "../../../shared/i18n/index";
+import { LOCALE_NAMES, localeOf } from "../../../shared/i18n/index";
 import { NewSiteInput, SiteInput, SiteView } from "../../../shared/schemas/site";
 import { CheckField, DateField, NumberField, SelectField } from "../../components/form";
 import { RecordForm } from "../../components/record-form";
@@ -86,7 +86,7 @@ export function NewSiteForm({ today, onSaved, onLeave }: FormProps & { today: st
       defaultValues={{
         name: "",
         timeZone: Intl.DateTimeFormat().resolvedOptions().timeZone,
-        language: isLocale(i18n.locale) ? i18n.locale : "en",
+        language: localeOf(i18n),
         noticeDelayMin: 15,
         settings: {
           effectiveFrom: today,
