@@ -381,6 +381,16 @@ const DAYS: readonly { readonly name: string; readonly day: DayInput }[] = [
       { usesUncertainty: true },
     ),
   },
+  ...[STEADY, lavg5(80), lavg5(90), lavg5(null), { kind: "laeq" } as const].map((metric) => ({
+    name: `programme audio under a muff, the level a ${metric.kind} ${"settings" in metric ? metric.settings.thresholdDb : ""}`,
+    day: dayOf(
+      buildTask("mill", 300, buildLevel(97.3, { metric, lcMinusLaDb: 1.3 }), {
+        protection: buildProtection(ALL_DATA, { audioDb: 77 }),
+        wornPct: 91,
+      }),
+      buildTask("yard", 180, buildLevel(78.4, { metric })),
+    ),
+  })),
   {
     name: "two protectors, and one whose rating would raise the level",
     day: dayOf(

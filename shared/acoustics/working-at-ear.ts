@@ -123,10 +123,7 @@ export class DayAtEarRows {
       const weight = scale.isByReading
         ? steadyWeight(task.level.levelDb, lawHere)
         : (isLeast ? leastAtEar : mostAtEar)(task.level, lawHere, this.outsideLaw);
-      const isBounded =
-        !scale.isByReading &&
-        mostAtEar(task.level, lawHere, this.outsideLaw) >
-          leastAtEar(task.level, lawHere, this.outsideLaw) * (1 + BINARY_NOISE);
+      const isBounded = !scale.isByReading && this.isBounded(task.level, lawHere);
       const bareBound = isBounded ? this.bound : null;
       const tasksDb = weight > 0 ? levelOfWeight(weight, law) : null;
       const worn = seen.isWorn ? (task.wornPct ?? 100) / 100 : 0;
@@ -186,6 +183,21 @@ export class DayAtEarRows {
       });
     }
     return rows;
+  }
+
+  /** A task's level only bounds the rule's own. */
+  isBounded(level: TaskLevel, law = this.law): boolean {
+    const least = leastAtEar(level, law, this.outsideLaw);
+    return mostAtEar(level, law, this.outsideLaw) > least * (1 + BINARY_NOISE);
+  }
+
+  /** The level of a worn task that counts on one side, dB; null where none does, or nothing bounds it. */
+  countedDb(level: TaskLevel, end: "least" | "most"): number | null {
+    if (!this.isBounded(level)) return level.levelDb;
+    const weight = (end === "least" ? leastAtEar : mostAtEar)(level, this.law, this.outsideLaw);
+    if (weight === 0 || weight === Number.POSITIVE_INFINITY) return null;
+    const db = levelOfWeight(weight, this.law);
+    return Math.abs(db - level.levelDb) < BINARY_NOISE ? level.levelDb : db;
   }
 
   private underNoise(level: TaskLevel, seen: TaskAtEar, bareDb: number | null, worn: number) {

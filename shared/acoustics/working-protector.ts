@@ -355,12 +355,12 @@ export function activeLines(
   ];
 }
 
-/** Programme audio added to what is left of the noise, active part off and on. */
-export function programmeLines({ wornDb, wornActiveDb, audio }: TaskAtEar): Parts[] {
+/** Programme audio added to what is left of the noise, active part off and on; k as for `audioSum`. */
+export function programmeLines({ wornDb, wornActiveDb, audio }: TaskAtEar, k: MathPart): Parts[] {
   if (!audio || wornDb === null) return [];
-  const lines = [audioSum(audio.noiseDb, audio.levelDb, wornDb, "A,m", sign("10"))];
+  const lines = [audioSum(audio.noiseDb, audio.levelDb, wornDb, "A,m", k)];
   if (audio.noiseActiveDb !== null && wornActiveDb !== null)
-    lines.push(audioSum(audio.noiseActiveDb, audio.levelDb, wornActiveDb, "A,m,on", sign("10")));
+    lines.push(audioSum(audio.noiseActiveDb, audio.levelDb, wornActiveDb, "A,m,on", k));
   return lines;
 }
 

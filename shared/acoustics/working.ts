@@ -5,7 +5,7 @@ import { type ExchangeLaw, isSameLaw, lawOf, levelFactor } from "./exchange-law"
 import { creditedPeaks } from "./maximum";
 import { isSameFigure, outsideCriterion } from "./outside-criterion";
 import { evaluateAtEar } from "./protection/at-ear";
-import { withAudioDb } from "./protection/programme-audio";
+import { audioLaw, withAudioAtEndDb } from "./protection/programme-audio";
 import { wornShareLevelDb } from "./protection/wearing-time";
 import type {
   AttenuationMethod,
@@ -29,7 +29,7 @@ import {
   POSITION_DB,
 } from "./uncertainty";
 import { DayAtEarRows, type TimeAtEar } from "./working-at-ear";
-import { boundedLevel, boundLines, countedAs, NoiseUnderLaw } from "./working-noise";
+import { boundedLevel, boundLines, NoiseUnderLaw } from "./working-noise";
 import {
   type Bound,
   bounded,
@@ -768,10 +768,18 @@ class Builder {
       const atBound = (parts: readonly MathPart[]): Line =>
         line(isAtEar(parts) ? related(parts, bound) : parts, label);
       const byMethod = methodLines(of, protection, rule, governing);
-      const onTop = [...activeLines(of, protection, rule, counted), ...programmeLines(counted)].map(
-        atBound,
-      );
-      if (bound === null || usedDb === of.levelDb) return [...byMethod.map(atBound), ...onTop];
+      const byActive = activeLines(of, protection, rule, counted);
+      const programme = programmeLines(counted, this.audioFactor(of, bound)).map(atBound);
+      // Only the sum with the programme is a bound where the level itself is exact.
+      if (bound === null || usedDb === of.levelDb) {
+        const lines = [...byMethod, ...byActive];
+        const isExact = !this.dayAtEar.isBounded(of);
+        return [
+          ...lines.map((parts) => (isExact ? line(parts, label) : atBound(parts))),
+          ...programme,
+        ];
+      }
+      const onTop = [...byActive.map(atBound), ...programme];
       // Where nothing bounds the level there is only what the method makes of the one on record.
       if (usedDb === null) return byMethod.map((parts) => line(onRecord(parts), label));
       return [
@@ -781,6 +789,12 @@ class Builder {
         ...onTop,
       ];
     });
+  }
+
+  /** The k of a programme's sum with the noise: 10 by energy, the rule's where only weights added bound it. */
+  private audioFactor(of: TaskLevel, bound: Bound | null): MathPart {
+    const { isUpperByEnergy } = audioLaw(0, of, this.dayAtEar.law, false);
+    return bound !== "upper" || isUpperByEnergy ? sign("10") : this.factorPart();
   }
 
   /** A task at the ear by the level that counts: where that is a bound, as much off it as off the level on record. */
@@ -804,7 +818,8 @@ class Builder {
   ): TaskAtEar & { readonly usedDb: number | null; readonly bound: Bound } {
     const { law, factor } = this.dayAtEar;
     const { levelDb: wornDb, bound } = rangeWhileWorn(range, this.evaluation.atEarBound);
-    const { usedDb } = countedAs(of.metric, of.levelDb, law, sideOf(bound));
+    const end = sideOf(bound);
+    const usedDb = this.dayAtEar.countedDb(of, end);
     const moved = (db: number | null) =>
       db === null || usedDb === null ? null : db + usedDb - of.levelDb;
     const noiseDb = moved(atEar.audio?.noiseDb ?? null);
@@ -814,7 +829,7 @@ class Builder {
     const wornActiveDb = audio
       ? noiseActiveDb === null
         ? null
-        : withAudioDb(noiseActiveDb, audio.levelDb)
+        : withAudioAtEndDb(noiseActiveDb, audioLaw(audio.levelDb, of, law, false), end)
       : moved(atEar.wornActiveDb);
     const inTask = (whileWornDb: number | null): number | null =>
       whileWornDb === null || usedDb === null || atEar.wornPct === null

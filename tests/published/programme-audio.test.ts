@@ -53,6 +53,19 @@ describe("by energy (computed)", () => {
     expect(tasks[0]!.methods[0]!.atEarDb).toBe(80);
   });
 
+  test("beside an average of 5 dB the level while worn is bounded: 80 left, 78 of radio", () => {
+    const level = buildLevel(98, { metric: lavg5(80) });
+    const protection = buildProtection({ usRatingDb: 25 }, { audioDb: 78 });
+    const { tasks } = evaluateDay(
+      dayOf(buildTask("mill", 480, level, { protection, wornPct: 100 })),
+      US,
+      [],
+    );
+    // By energy the least; the two weights added, 5·log2(2^16 + 2^15.6), the most.
+    expect(tasks[0]!.wornRangeDb!.leastDb).toBeCloseTo(82.1244, 4);
+    expect(tasks[0]!.wornRangeDb!.mostDb).toBeCloseTo(84.0691, 4);
+  });
+
   test("only while worn: 75 % of 105 dB and 80 of radio, the rest bare", () => {
     const byHand = 10 * Math.log10(0.75 * (1e8 + 1e8) + 0.25 * 10 ** 10.5);
     expect(atEar(eightHours(105, muff(80), 75))).toBeCloseTo(byHand, 9);

@@ -32,7 +32,13 @@ import type {
 import { poweredShare } from "./active";
 import { en458Word } from "./adequacy";
 import { activeGainDb, methodResult, reductions } from "./attenuation";
-import { type AudioLaw, audioLaw, withAudioDb, withAudioWeight } from "./programme-audio";
+import {
+  type AudioLaw,
+  audioLaw,
+  withAudioAtEndDb,
+  withAudioDb,
+  withAudioWeight,
+} from "./programme-audio";
 import { wornShareLevelDb } from "./wearing-time";
 
 /** A worker's day from under the protectors, minutes times weight under the rule's law without its threshold. */
@@ -421,17 +427,28 @@ function seeTask(
       : wornShareLevelDb(outsideDb, whileWornDb, task.wornPct, levelFactor(law));
   // A worker who must wear one whatever the level is not told that it is too much for a quiet room.
   const actionDb = isInNoise(task, day.site.wearFromDb) ? en458ActionDb(day, rule) : null;
-  // Where the level only bounds the rule's own, a word stands only if both ends have it.
+  const audio = audioDb === null ? null : audioLaw(audioDb, level, law, false);
   const aboveDb = (weight: number): number =>
     weight > 0 ? levelOfWeight(weight, law) - outsideDb : Number.NEGATIVE_INFINITY;
-  const leastDb = aboveDb(leastAtEar(level, law, outsideLaw));
-  const mostDb = aboveDb(mostAtEar(level, law, outsideLaw));
+  const aboveLeastDb = aboveDb(leastAtEar(level, law, outsideLaw));
+  const aboveMostDb = aboveDb(mostAtEar(level, law, outsideLaw));
+  const rangeOf = (leftDb: number): { leastDb: number; mostDb: number } => {
+    const range = { leastDb: leftDb + aboveLeastDb, mostDb: leftDb + aboveMostDb };
+    return audio === null
+      ? range
+      : {
+          leastDb: withAudioAtEndDb(range.leastDb, audio, "least"),
+          mostDb: withAudioAtEndDb(range.mostDb, audio, "most"),
+        };
+  };
+  const { leastDb, mostDb } = rangeOf(noiseDb);
   const isBounded = mostDb - leastDb > BINARY_NOISE_DB;
+  // Where the level only bounds the rule's own, a word stands only if both ends have it.
   const word = (leftDb: number): ProtectorWord | null => {
     if (!isBounded) return wordOf(withAudioDb(leftDb, audioDb), actionDb);
-    const atLeast = wordOf(withAudioDb(leftDb + leastDb, audioDb), actionDb);
-    const atMost = wordOf(withAudioDb(leftDb + mostDb, audioDb), actionDb);
-    return atLeast === atMost ? atLeast : null;
+    const range = rangeOf(leftDb);
+    const atLeast = wordOf(range.leastDb, actionDb);
+    return atLeast === wordOf(range.mostDb, actionDb) ? atLeast : null;
   };
   const wornWord = word(noiseDb);
   const isOpen = isBounded && actionDb !== null && wornWord === null;
@@ -458,8 +475,8 @@ function seeTask(
       reason: task.wornPct === null ? "wearing-unknown" : isOpen ? bound : active.reason,
       ...(isBounded && {
         wornRangeDb: {
-          leastDb: Number.isFinite(leastDb) ? withAudioDb(noiseDb + leastDb, audioDb) : null,
-          mostDb: Number.isFinite(mostDb) ? withAudioDb(noiseDb + mostDb, audioDb) : null,
+          leastDb: Number.isFinite(aboveLeastDb) ? leastDb : null,
+          mostDb: Number.isFinite(aboveMostDb) ? mostDb : null,
         },
       }),
       ...(audioDb !== null && { audio: { levelDb: audioDb, noiseDb, noiseActiveDb } }),

@@ -55,3 +55,12 @@ export function withAudioWeight(
     return noiseWeight + audioWeight;
   return weightOf(withAudioDb(levelOfWeight(noiseWeight, law), audioDb), law);
 }
+
+/**
+ * Level while worn of what a protector leaves of the noise and of a programme, dB: the least or the most that it can be
+ * under a law of addition.
+ */
+export function withAudioAtEndDb(noiseDb: number, audio: AudioLaw, end: "least" | "most"): number {
+  const weight = withAudioWeight(weightOf(noiseDb, audio.law), audio, end);
+  return levelOfWeight(weight, audio.law);
+}
