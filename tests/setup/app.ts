@@ -1,9 +1,18 @@
 import { execFile } from "node:child_process";
 import { randomBytes } from "node:crypto";
-import { existsSync, mkdirSync, mkdtempSync, readFileSync, rmSync } from "node:fs";
+import {
+  cpSync,
+  existsSync,
+  mkdirSync,
+  mkdtempSync,
+  readFileSync,
+  rmSync,
+  writeFileSync,
+} from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { promisify } from "node:util";
+import { inject } from "vitest";
 import { copyDatabase, dropDatabase } from "./copy-database";
 import { projectFolder, type RunningProcess, startProcess, waitFor } from "./processes";
 import {
@@ -45,6 +54,46 @@ export async function buildApp(): Promise<void> {
   });
 }
 
+const entry = (name: string) => ["--enable-source-maps", `dist/server/${name}.js`];
+
+/** What does not hang on where the other services are. */
+const settings = (database: { appUrl: string; ownerUrl: string }, dataDir: string) => ({
+  NODE_ENV: "development",
+  HOST: "127.0.0.1",
+  PORT: "1",
+  DATABASE_URL: database.appUrl,
+  OWNER_DATABASE_URL: database.ownerUrl,
+  OIDC_ISSUER: "http://localhost:1",
+  OIDC_CLIENT_ID: "dinward",
+  OIDC_CLIENT_SECRET: "unused",
+  OIDC_ALLOW_INSECURE: "true",
+  SMTP_URL: "smtp://127.0.0.1:1",
+  MAIL_FROM: "Dinward <noise@dinward.example>",
+  SESSION_SECRETS: "unused-".repeat(8),
+  PUBLIC_URL: "http://127.0.0.1:1",
+  DATA_DIR: dataDir,
+  TRUST_PROXY: "false",
+  LOG_LEVEL: "warn",
+});
+
+/** The demo is filled once in a run, by the first file that wants it; the others copy it. */
+async function copyDemo(label: string, dataDir: string) {
+  const { demoFolder } = inject("database");
+  const filledFile = join(demoFolder, "filled");
+  const demoData = join(demoFolder, "app");
+  if (!existsSync(filledFile)) {
+    mkdirSync(demoData, { recursive: true });
+    const filling = await copyDatabase("demo");
+    const env = { ...process.env, ...settings(filling, demoData) };
+    // A short past is enough for a test, and the story is the same.
+    const seedDemo = [...entry("seed-demo"), "--months=2"];
+    await promisify(execFile)(process.execPath, seedDemo, { cwd: projectFolder, env });
+    writeFileSync(filledFile, filling.name);
+  }
+  cpSync(demoData, dataDir, { recursive: true });
+  return copyDatabase(label, readFileSync(filledFile, "utf8"));
+}
+
 /** The built application on a fresh database, with a sign-in provider and a mail catcher of its own. */
 export async function startApp({
   label,
@@ -66,33 +115,18 @@ export async function startApp({
   const url = `http://127.0.0.1:${ports.web}`;
   const secret = () => randomBytes(32).toString("base64url");
   const secrets = { client: secret(), session: secret() };
-  const database = await copyDatabase(label);
+  const database = seed === "demo" ? await copyDemo(label, dataDir) : await copyDatabase(label);
   addPeople(peopleFolder, people);
   const env: NodeJS.ProcessEnv = {
     ...process.env,
-    NODE_ENV: "development",
-    HOST: "127.0.0.1",
+    ...settings(database, dataDir),
     PORT: String(ports.web),
-    DATABASE_URL: database.appUrl,
-    OWNER_DATABASE_URL: database.ownerUrl,
     OIDC_ISSUER: `http://localhost:${ports.signIn}`,
-    OIDC_CLIENT_ID: "dinward",
     OIDC_CLIENT_SECRET: secrets.client,
-    OIDC_ALLOW_INSECURE: "true",
     SMTP_URL: `smtp://127.0.0.1:${ports.smtp}`,
-    MAIL_FROM: "Dinward <noise@dinward.example>",
     SESSION_SECRETS: secrets.session,
     PUBLIC_URL: url,
-    DATA_DIR: dataDir,
-    TRUST_PROXY: "false",
-    LOG_LEVEL: "warn",
   };
-  const entry = (name: string) => ["--enable-source-maps", `dist/server/${name}.js`];
-  if (seed === "demo") {
-    // A short past is enough for a test, and the story is the same.
-    const seedDemo = [...entry("seed-demo"), "--months=2"];
-    await promisify(execFile)(process.execPath, seedDemo, { cwd: projectFolder, env });
-  }
   const demoPeople = join(dataDir, "demo-people.json");
   const readPeople = (): Person[] =>
     existsSync(demoPeople) ? JSON.parse(readFileSync(demoPeople, "utf8")) : [...people];

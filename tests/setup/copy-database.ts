@@ -11,9 +11,10 @@ async function asSuperuser<T>(work: (client: pg.Client) => Promise<T>): Promise<
   }
 }
 
-/** A fresh copy of the migrated database, in the place of an earlier one of that name. */
-export async function copyDatabase(label: string) {
-  const { prefix, template, ownerUrl, appUrl } = inject("database");
+/** A fresh copy of the migrated database or of another of this run, in the place of an earlier one of that name. */
+export async function copyDatabase(label: string, from?: string) {
+  const { prefix, ownerUrl, appUrl, ...rest } = inject("database");
+  const template = from ?? rest.template;
   const name = `${prefix}_${label}`;
   await asSuperuser(async (client) => {
     await client.query(`DROP DATABASE IF EXISTS ${name} WITH (FORCE)`);

@@ -1,4 +1,7 @@
 import { execFile } from "node:child_process";
+import { mkdtempSync, rmSync } from "node:fs";
+import { tmpdir } from "node:os";
+import { join } from "node:path";
 import { promisify } from "node:util";
 import type { TestProject } from "vitest/node";
 import { applicationEnvironment } from "../../scripts/lib/environment.mjs";
@@ -15,6 +18,8 @@ declare module "vitest" {
       ownerUrl: string;
       appUrl: string;
       programsFolder: string;
+      /** Where the demo is kept that the files of a run copy; each of them may be the one that fills it. */
+      demoFolder: string;
     };
   }
 }
@@ -42,6 +47,7 @@ export default async function setUp(project: TestProject) {
       cause: error,
     });
   }
+  const demoFolder = mkdtempSync(join(tmpdir(), "dinward-demo-"));
   project.provide("database", {
     prefix,
     template,
@@ -49,6 +55,10 @@ export default async function setUp(project: TestProject) {
     ownerUrl: cluster.url("owner", "DATABASE"),
     appUrl: cluster.url("app", "DATABASE"),
     programsFolder: cluster.programsFolder,
+    demoFolder,
   });
-  return close;
+  return async () => {
+    rmSync(demoFolder, { recursive: true, force: true });
+    await close();
+  };
 }
