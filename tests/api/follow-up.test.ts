@@ -1,4 +1,4 @@
-import { describe, expect, inject, test } from "vitest";
+import { describe, expect, inject, test, vi } from "vitest";
 import { escalateOverdue } from "../../server/commands/escalate-overdue";
 import { readConfig } from "../../server/config";
 import { sendEscalation } from "../../server/jobs/send-escalation";
@@ -404,5 +404,34 @@ describe("a finding that is handed over, and one that is overdue", () => {
       body: { kind: "take-in-hand", dueOn: daysFromToday(5) },
     });
     expect(later.body.wentUp).toBeNull();
+  });
+
+  // In London the clock is an hour ahead from 29 March 2026 on; in Los Angeles it is set back on 1 November.
+  test.each([
+    ["Europe/London", "2026-03-28", "2026-03-28T23:59:00Z", false],
+    ["Europe/London", "2026-03-28", "2026-03-29T00:01:00Z", true],
+    ["Europe/London", "2026-03-29", "2026-03-29T22:59:00Z", false],
+    ["Europe/London", "2026-03-29", "2026-03-29T23:01:00Z", true],
+    ["America/Los_Angeles", "2026-10-31", "2026-11-01T06:59:00Z", false],
+    ["America/Los_Angeles", "2026-10-31", "2026-11-01T07:01:00Z", true],
+    ["America/Los_Angeles", "2026-11-01", "2026-11-02T07:59:00Z", false],
+    ["America/Los_Angeles", "2026-11-01", "2026-11-02T08:01:00Z", true],
+  ])("in %s what is due on %s has at %s gone up: %s", async (timeZone, dueOn, at, isUp) => {
+    const site = await buildSite({ timeZone });
+    const { organizationId } = site;
+    const named = await buildUser({ organizationId, roles: ["officer"] });
+    await select("UPDATE sites SET escalation_user_id = $2 WHERE id = $1", [site.id, named.id]);
+    const id = await buildFinding({ site, dueOn });
+    vi.useFakeTimers({ toFake: ["Date"], now: new Date(at) });
+    try {
+      await inTransaction({ organizationId }, () => escalateOverdue(organizationId));
+    } finally {
+      vi.useRealTimers();
+    }
+    const [finding] = await select<{ escalation_id: string | null }>(
+      "SELECT escalation_id FROM findings WHERE id = $1",
+      [id],
+    );
+    expect(finding!.escalation_id !== null).toBe(isUp);
   });
 });
