@@ -28,6 +28,11 @@ import { recordReads } from "./20261202110100-record-reads";
 import { apiTokens } from "./20261202110200-api-tokens";
 import { groupMappings } from "./20261202110300-group-mappings";
 import { recordDraws } from "./20261202140000-record-draws";
+import { undoneSteps } from "./20261203120000-undone-steps";
+import { absencesAndLoans } from "./20261203120100-absences-and-loans";
+import { handOvers } from "./20261203120200-hand-overs";
+import { digests } from "./20261203120300-digests";
+import { yearReports } from "./20261203130000-year-reports";
 
 /** In the order in which they run. */
 export const migrations = [
@@ -61,4 +66,9 @@ export const migrations = [
   apiTokens,
   groupMappings,
   recordDraws,
+  undoneSteps,
+  absencesAndLoans,
+  handOvers,
+  digests,
+  yearReports,
 ];

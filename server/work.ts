@@ -8,6 +8,7 @@ import { lookAfter } from "./jobs/look-after";
 import { readHistoryImport } from "./jobs/read-history";
 import { recomputeStaleDays } from "./jobs/recompute-stale-days";
 import { searchTimetable } from "./jobs/search-timetable";
+import { sendDigest } from "./jobs/send-digest";
 import { sendEscalation } from "./jobs/send-escalation";
 import { sendNotice } from "./jobs/send-notice";
 import { sealTrail } from "./lib/audit";
@@ -50,6 +51,7 @@ const taskList: TaskList = {
   "send-escalation": job("send-escalation", (payload) =>
     sendEscalation(payload, mailer, config.PUBLIC_URL),
   ),
+  "send-digest": job("send-digest", (payload) => sendDigest(payload, mailer, config.PUBLIC_URL)),
   "read-history": job("read-history", (payload) => readHistoryImport(payload)),
   "analyse-recording": job("analyse-recording", (payload) => analyseStoredRecording(payload)),
   "check-microphones": job("check-microphones", (payload) => checkMicrophones(payload)),

@@ -109,6 +109,10 @@ export const paths = {
 
   crewSheet: "/crew-sheet",
   crewSheetOf: (crewId: string) => `/crew-sheet/${crewId}`,
+  /** Who of a crew is not in, and who is on loan. */
+  crewPeople: (crewId: string) => `/crew-sheet/${crewId}/people`,
+  /** What one shift's supervisor hands to the next. */
+  handOvers: (crewId: string) => `/crew-sheet/${crewId}/hand-over`,
   me: "/me",
   account: "/account",
   myDay: (date: string) => `/me/days/${date}`,

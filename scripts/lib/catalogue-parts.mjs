@@ -27,11 +27,7 @@ const beyondWorkers = [
   "spectrum-field",
 ]
   .map((name) => `src/components/${name}.tsx`)
-  .concat(
-    ["letter-words", "register-words", "role-word", "run-words"].map(
-      (name) => `src/lib/${name}.ts`,
-    ),
-  );
+  .concat("src/lib/role-word.ts");
 
 const included = {
   base: [
@@ -59,6 +55,8 @@ const included = {
     ...features("crew-sheet", "year-file", "trail", "people", "sites-admin", "access", "tokens"),
     ...pages(
       "crew-sheet-page",
+      "crew-people-page",
+      "hand-over-page",
       "year-file-page",
       "draw-page",
       "trail-page",
@@ -102,7 +100,7 @@ const included = {
       "microphone-*-page",
     ),
   ],
-  rules: ["shared/acoustics/**", "shared/rule-sets/**", ...beyondWorkers],
+  rules: ["shared/acoustics/**", "shared/rule-sets/**", "shared/words/**", ...beyondWorkers],
   day: [...features("day-entry"), ...pages("day*-page")],
   register: [
     ...features("at-ear", "signals", "planning"),
@@ -135,6 +133,7 @@ const included = {
   ],
   measuring: [
     "shared/recordings/**",
+    "shared/surveys/**",
     ...features("surveys", "outings", "histories", "recordings", "groups"),
     ...pages(
       "to-measure-page",
@@ -150,6 +149,8 @@ const included = {
       "measuring-frame",
     ),
   ],
+  // Documents of the office; a worker's own is among the mail's words.
+  reports: ["server/reports/survey-report.ts", "server/reports/year-report.ts"],
   mail: ["server/**"],
 };
 

@@ -10,7 +10,7 @@ export interface DemoWorker {
   job: string;
   employer?: "agency" | "contractor";
   employerName?: string;
-  language?: "de";
+  language?: Locale;
   /** Hired before the demo begins unless said. */
   hiredDaysAgo?: number;
   leftDaysAgo?: number;
@@ -30,7 +30,13 @@ export const WORKERS: readonly DemoWorker[] = [
   { crew: "Test cell days", number: "3352", name: "N. Okwuosa", job: "Test cell hand" },
   { crew: "Test cell days", number: "3367", name: "H. Lindqvist", job: "Test cell hand" },
   { crew: "Test cell days", number: "3371", name: "B. Tremayne", job: "Test cell hand" },
-  { crew: "Test cell days", number: "3388", name: "E. Vasquez-Lund", job: "Test cell hand" },
+  {
+    crew: "Test cell days",
+    number: "3388",
+    name: "E. Vasquez-Lund",
+    job: "Test cell hand",
+    language: "es",
+  },
   { crew: "Test cell days", number: "3390", name: "C. Marchetti", job: "Test cell hand" },
   { crew: "Test cell days", number: "3402", name: "G. Ó Riada", job: "Test cell hand" },
   { crew: "Test cell days", number: "3411", name: "Y. Tanaka-Bell", job: "Test cell hand" },
@@ -99,7 +105,7 @@ export const WORKERS: readonly DemoWorker[] = [
       "Occupational health asks for no more than 80 dB at the ear, and a protector in every noisy task. To be looked at again each spring.",
   },
   { crew: "Fettling days", number: "4419", name: "S. Pettersen-Vale", job: "Fettler" },
-  { crew: "Fettling days", number: "4422", name: "L. Grzelak", job: "Fettler" },
+  { crew: "Fettling days", number: "4422", name: "L. Grzelak", job: "Fettler", language: "pl" },
   { crew: "Fettling days", number: "4425", name: "C. Dubois-Hale", job: "Fettler" },
   { crew: "Fettling days", number: "4431", name: "渡会 沙羅", job: "Fettler" },
   { crew: "Fettling days", number: "4433", name: "H. Abdirahim", job: "Fettler" },
@@ -295,6 +301,16 @@ export const PEOPLE: readonly DemoPerson[] = [
     worker: "3985",
     language: "de",
     note: "Worker, Test cell nights, reads German",
+  }),
+  person("e.vasquez", "E. Vasquez-Lund", OSTMERE, at("ostmere", "worker"), {
+    worker: "3388",
+    language: "es",
+    note: "Worker, Test cell days, reads Spanish",
+  }),
+  person("l.grzelak", "L. Grzelak", OSTMERE, at("ostmere", "worker"), {
+    worker: "4422",
+    language: "pl",
+    note: "Worker, Fettling days, reads Polish",
   }),
   person("p.iwanek", "P. Iwanek", KETTLE_BEND, at("kettle-bend", "worker"), {
     worker: "2875",

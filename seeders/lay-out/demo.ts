@@ -17,6 +17,7 @@ import { layOutPlans, layOutTimetable } from "./plans";
 import { Demo, known, layOutProgramme } from "./programme";
 import { layOutProtection, layOutRounds } from "./protection";
 import { layOutRecordings } from "./recordings";
+import { layOutShiftChange } from "./shift-change";
 import { takeStep } from "./steps";
 import { dateStory } from "./story";
 import { layOutTraining } from "./training";
@@ -107,6 +108,7 @@ export async function layOutDemo({
   await compute(await staleDays(demo), new Date(now.getTime() - 60_000));
   await layOutPlans(demo);
   await layOutTimetable(demo);
+  await layOutShiftChange(demo, now);
   await sendOutToday(demo, now);
   await tellOfCalibration(demo);
   await markSent(demo, now, publicUrl);

@@ -6,6 +6,7 @@ import { execute } from "../lib/db";
 import { issue, unprocessable } from "../lib/errors";
 import type { Actor } from "../lib/policy";
 import type { Crew, Worker } from "../models/worker";
+import { checkLoanFree } from "./lend-worker";
 
 export async function addCrewMember(
   actor: Actor,
@@ -21,6 +22,7 @@ export async function addCrewMember(
     issues.push(issue(["fromDate"], "after-leaving", { leftOn: worker.leftOn }));
   }
   if (issues.length > 0) throw unprocessable(issues);
+  if (isLoan) await checkLoanFree(worker.id, fromDate, toDate);
   await execute(
     `INSERT INTO crew_memberships (organization_id, crew_id, worker_id, valid, is_loan) VALUES ($1, $2, $3, ${daysFromTo("$4", "$5")}, $6)`,
     [actor.organizationId, crew.id, worker.id, fromDate, toDate, isLoan],

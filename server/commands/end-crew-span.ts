@@ -27,7 +27,8 @@ export async function endCrewSpan(
   if (!span) throw notFound();
   checkSpan(span.fromDate, toDate);
   if (span.toDate === toDate) return;
-  await execute(`UPDATE ${table} SET valid = ${daysFromTo("$2", "$3")} WHERE id = $1`, [
+  const revised = kind === "member" ? ", revision = revision + 1" : "";
+  await execute(`UPDATE ${table} SET valid = ${daysFromTo("$2", "$3")}${revised} WHERE id = $1`, [
     id,
     span.fromDate,
     toDate,

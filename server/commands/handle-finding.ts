@@ -10,7 +10,7 @@ import { listOwners } from "../queries/follow-up";
 
 /** From where each step may be taken, and where it leads. Null: the state stays. */
 const steps: Record<
-  FindingStepInput["kind"],
+  Exclude<FindingStepInput["kind"], "undo">,
   { from: readonly FindingState[]; to: FindingState | null }
 > = {
   "take-in-hand": { from: ["new", "came-back", "done"], to: "in-hand" },
@@ -44,6 +44,7 @@ export async function handleFinding(
   seenRevision: number,
 ): Promise<void> {
   if (finding.revision !== seenRevision) throw stale(await findingView(actor, finding));
+  if (input.kind === "undo") return undoStep(actor, finding);
   const step = steps[input.kind];
   if (!step.from.includes(finding.state))
     throw new AppError(finding.state === "closed" ? "finding-closed" : "nothing-to-do", 409);
@@ -93,6 +94,39 @@ export async function handleFinding(
       text,
       ...(input.kind === "hand-over" && { ownerId: input.ownerId, dueOn }),
     },
+  });
+}
+
+/** The screen offers it for ten seconds; a slow connection has a minute. */
+const UNDO_WITHIN_S = 60;
+
+/**
+ * Takes back one's own last step, Mark done or Can't: the state is again what it was before it, and both stand in the
+ * finding's life.
+ *
+ * @throws AppError too-late-to-undo, also where something else was the last to happen.
+ */
+async function undoStep(actor: Actor, finding: Finding): Promise<void> {
+  const last = await row<{ fromState: FindingState; toState: FindingState; isOwn: boolean }>(
+    `SELECT from_state AS "fromState", to_state AS "toState",
+       author_id = :userId AND kind IN ('marked-done', 'cannot') AND created_at > now() - interval '${UNDO_WITHIN_S} seconds' AS "isOwn"
+     FROM finding_steps WHERE finding_id = :id ORDER BY created_at DESC, id DESC LIMIT 1`,
+    { id: finding.id, userId: actor.userId },
+  );
+  if (!last?.isOwn || last.toState !== finding.state) throw new AppError("too-late-to-undo", 409);
+  await execute("UPDATE findings SET state = $2, revision = revision + 1 WHERE id = $1", [
+    finding.id,
+    last.fromState,
+  ]);
+  await execute(
+    "INSERT INTO finding_steps (organization_id, finding_id, kind, from_state, to_state, author_id) VALUES ($1, $2, 'undone', $3, $4, $5)",
+    [actor.organizationId, finding.id, finding.state, last.fromState, actor.userId],
+  );
+  await recordAudit(actor, {
+    action: "undo-finding",
+    subjectKind: "finding",
+    subjectId: finding.id,
+    values: { from: finding.state, to: last.fromState },
   });
 }
 

@@ -1,5 +1,5 @@
 import { randomUUID } from "node:crypto";
-import type { IssueInput } from "../../shared/schemas/fit";
+import { type IssueInput, reasonAskedFor } from "../../shared/schemas/fit";
 import type { ProblemIssue } from "../../shared/schemas/problem";
 import { recordAudit } from "../lib/audit";
 import { todayAt } from "../lib/calendar";
@@ -106,11 +106,11 @@ async function check(
     issues.push(issue(["size"], "size-unknown"));
   if (!offeredModelIds.includes(modelId))
     issues.push(issue(["offeredModelIds"], "issued-not-offered"));
-  if (reason === null) {
-    if (new Set(offered.map(({ kind }) => kind)).size < 2)
-      issues.push(issue(["reason"], "one-kind-offered"));
-    else if (stock !== null && stock < 1) issues.push(issue(["reason"], "none-in-stock"));
-  }
+  const asked = reasonAskedFor(
+    offered.map(({ kind }) => kind),
+    stock,
+  );
+  if (reason === null && asked !== null) issues.push(issue(["reason"], asked));
   if (fitTestId !== null) issues.push(...(await fitTestIssues(actor, worker, input, fitTestId)));
   if (issues.length > 0) throw unprocessable(issues);
 }

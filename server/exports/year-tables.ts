@@ -1,10 +1,13 @@
+import { REST, SLOT_MIN } from "../../shared/planning/timetable";
 import { type Actor, visible } from "../lib/policy";
 import {
   assignmentPolicy,
   dayPolicy,
+  drawPolicy,
   findingPolicy,
   fitTestPolicy,
   noticePolicy,
+  planPolicy,
   protectorPolicy,
   runPolicy,
   shiftPolicy,
@@ -365,6 +368,113 @@ export function yearTables(actor: Actor, asked: YearRecords): YearTable[] {
       ],
       rest: `FROM notices n JOIN users u ON u.id = n.recipient_id
         WHERE n.site_id = '${siteId}' AND n.created_at >= '${year}-01-01' AND n.created_at < '${year + 1}-01-01' AND ${visible(noticePolicy, actor, "n")} ORDER BY n.created_at, n.id`,
+    },
+    {
+      name: "timetables",
+      title: "Timetables kept as plans, for a day of the year",
+      key: ["plan_id"],
+      columns: [
+        id("plan_id", "p.id", "Plan that is a timetable"),
+        text("name", "p.name", "How it is called"),
+        code("scope_kind", "p.scope_kind", "Whether it is about a crew or a job"),
+        text("scope", "coalesce(c.name, j.name)", "The crew or the job"),
+        date("base_date", "p.base_date", "Day whose levels, rules and protectors it rests on"),
+        code("rule_set", "p.governing_rule_set", "Rule set by which it was searched for"),
+        whole("rule_set_version", "p.governing_version", "Version of the rule set"),
+        whole("method_version", "p.method_version", "Version of the arithmetic"),
+        code("criterion", "p.goal", "Criterion that it keeps to"),
+        share(
+          "largest_share_pct",
+          "(p.timetable->'found'->>'largestPct')::float8",
+          "Largest share of the limit that falls to one person",
+        ),
+        share(
+          "bound_share_pct",
+          "(p.timetable->'found'->>'boundPct')::float8",
+          "No timetable can have a smaller largest share",
+        ),
+        time("kept_at", utc("p.kept_at"), "When it was kept, UTC"),
+        freeText("put_aside_reason", "p.put_aside_reason", "Why it was put aside"),
+      ],
+      rest: `FROM plans p LEFT JOIN crews c ON c.id = p.scope_id LEFT JOIN jobs j ON j.id = p.scope_id
+        WHERE p.kind = 'timetable' AND p.site_id = '${siteId}' AND ${inYear("p.base_date")} AND ${visible(planPolicy, actor, "p")} ORDER BY p.kept_at, p.id`,
+    },
+    {
+      name: "timetable-stretches",
+      title: "Who is where when in each timetable",
+      key: ["plan_id", "person", "from_min"],
+      columns: [
+        id("plan_id", "x.plan_id", "Plan that is a timetable"),
+        whole("person", "x.person", "1, 2, 3… within the timetable"),
+        worker,
+        whole("from_min", `((x.first_slot - 1) * ${SLOT_MIN})::int`, "Minutes after the start"),
+        whole("length_min", `(x.slots * ${SLOT_MIN})::int`, "Minutes at it without a break"),
+        text("task", "x.task", "Task; empty: at none of them, in quiet"),
+        level("level_db", "x.level_db", "Level without protection, as it was when it was kept"),
+        share("day_share_pct", "x.share_pct", "Share of the limit of the person's whole day"),
+      ],
+      // A stretch is a run of slots at one task: slot and rank within the task then rise together.
+      rest: `FROM (SELECT s.plan_id, s.person, s.worker_id, s.share_pct, min(s.slot) AS first_slot, count(*) AS slots,
+            max(CASE WHEN s.place = ${REST} THEN s.basis->'rest'->>'name' ELSE s.basis->'tasks'->s.place->>'name' END) AS task,
+            max((CASE WHEN s.place = ${REST} THEN s.basis->'rest'->>'levelDb' ELSE s.basis->'tasks'->s.place->>'levelDb' END)::float8) AS level_db
+          FROM (SELECT p.id AS plan_id, p.timetable->'basis' AS basis, r.person, k.slot, k.place::text::int AS place,
+              (p.timetable->'basis'->'people'->(r.person::int - 1)->>'id')::uuid AS worker_id,
+              (p.timetable->'found'->'sharesPct'->>(r.person::int - 1))::float8 AS share_pct,
+              k.slot - row_number() OVER (PARTITION BY p.id, r.person, k.place ORDER BY k.slot) AS run
+            FROM plans p CROSS JOIN LATERAL jsonb_array_elements(p.timetable->'found'->'table') WITH ORDINALITY r(slots, person)
+              CROSS JOIN LATERAL jsonb_array_elements(r.slots) WITH ORDINALITY k(place, slot)
+            WHERE p.kind = 'timetable' AND p.site_id = '${siteId}' AND ${inYear("p.base_date")} AND ${visible(planPolicy, actor, "p")}) s
+          GROUP BY s.plan_id, s.person, s.worker_id, s.share_pct, s.place, s.run) x
+        LEFT JOIN workers w ON w.id = x.worker_id ORDER BY x.plan_id, x.person, x.first_slot`,
+    },
+    {
+      name: "draws",
+      title: "Records drawn at random from the year",
+      key: ["draw_id"],
+      columns: [
+        id("draw_id", "d.id", "Draw"),
+        text("seed", "d.seed", "Seed: with it the same results are drawn again"),
+        whole("drawn_from", "d.drawn_from", "How many results were in force then"),
+        id(
+          "drawn_from_sha256",
+          "encode(d.drawn_from_sha256, 'hex')",
+          "SHA-256 of their ids in order, one a line",
+        ),
+        time("drawn_at", utc("d.created_at"), "When, UTC"),
+        text(
+          "drawn_by",
+          isNamed ? "u.name" : "d.author_id::text",
+          "Who. An id in a file without workers' names",
+        ),
+        time("signed_at", utc("g.signed_at"), "When it was signed off, UTC; empty: not yet"),
+        text(
+          "signed_by",
+          isNamed ? "v.name" : "g.author_id::text",
+          "Who signed. An id in a file without workers' names",
+        ),
+        whole("questions", "g.questions", "Records with a question when it was signed off"),
+      ],
+      rest: `FROM record_draws d JOIN users u ON u.id = d.author_id LEFT JOIN record_draw_signatures g ON g.draw_id = d.id LEFT JOIN users v ON v.id = g.author_id
+        WHERE d.site_id = '${siteId}' AND d.year = ${year} AND ${visible(drawPolicy, actor, "d")} ORDER BY d.created_at, d.id`,
+    },
+    {
+      name: "drawn-records",
+      title: "Each record that was drawn, with its marks",
+      key: ["draw_id", "position", "mark_number"],
+      columns: [
+        id("draw_id", "i.draw_id", "Draw"),
+        whole("position", "i.position", "Its place in the draw"),
+        id("result_id", "i.result_id", "Result that was drawn"),
+        worker,
+        date("date", "i.date", "Its day"),
+        whole("mark_number", "coalesce(m.number, 0)", "1, 2, 3…: the last counts; 0: not marked"),
+        code("mark", "m.word", "in-order or question"),
+        freeText("note", "m.note", "What was noted"),
+        time("marked_at", utc("m.created_at"), "When it was marked, UTC"),
+      ],
+      rest: `FROM record_draws d JOIN record_draw_items i ON i.draw_id = d.id JOIN workers w ON w.id = i.worker_id
+        LEFT JOIN record_draw_marks m ON m.draw_id = i.draw_id AND m.position = i.position
+        WHERE d.site_id = '${siteId}' AND d.year = ${year} AND ${visible(drawPolicy, actor, "d")} ORDER BY d.created_at, d.id, i.position, m.number`,
     },
     {
       name: "trail",

@@ -1,6 +1,7 @@
 import { escalateOverdue } from "../commands/escalate-overdue";
 import { closeFitDues, closeLaidDownFits, openFitDues } from "../commands/follow-fits";
 import { queueRecompute } from "../commands/mark-days-stale";
+import { orderDigests } from "../commands/order-digests";
 import { queueHistoryReading } from "../commands/order-history-reading";
 import { queueNotice } from "../commands/schedule-notices";
 import { queueCheck } from "../commands/start-microphone-check";
@@ -48,6 +49,7 @@ export async function lookAfter(): Promise<void> {
       await openFitDues(organizationId);
       await writeResultLetters(organizationId, todayAt("UTC"));
       await escalateOverdue(organizationId);
+      await orderDigests(organizationId, new Date());
       await execute("DELETE FROM idempotency_keys WHERE created_at < now() - interval '30 days'");
     });
   }

@@ -44,6 +44,7 @@ const constraints: Record<string, () => AppError> = {
   shifts_overlap: () => new AppError("shifts-overlap", 409),
   assignments_overlap: () => new AppError("assignments-overlap", 409),
   crew_memberships_overlap: () => new AppError("membership-overlaps", 409),
+  absence_spans_overlap: () => new AppError("absence-overlaps", 409),
   runs_overlap: () => new AppError("instruments-overlap", 409),
   runs_one_out: () => new AppError("instruments-overlap", 409),
   time_histories_overlap: () => new AppError("instruments-overlap", 409),

@@ -5,6 +5,7 @@ export interface JobPayloads {
   "recompute-days": { organizationId: string };
   "send-notice": { organizationId: string; noticeId: string };
   "send-escalation": { organizationId: string; escalationId: string };
+  "send-digest": { organizationId: string; digestId: string };
   "look-after": Record<string, never>;
   /** Reads a time history's file: a report, and once it is ordered the levels. */
   "read-history": { organizationId: string; importId: string };

@@ -75,6 +75,37 @@ export const crewPolicy = policy<AtSite>()({
   can: { change: officerAt, enterDay: officerAt },
 });
 
+/** Crews whose people somebody plans: a supervisor in charge today, an officer at the site. */
+export const chargePolicy = policy<AtSite>()({
+  sees: (actor, c) => [
+    actor.at(`${c}.site_id`, "officer"),
+    actor.is("supervisor") &&
+      `EXISTS (SELECT 1 FROM crew_supervisors s WHERE s.crew_id = ${c}.id AND s.user_id = '${actor.userId}' AND s.valid @> ${today})`,
+  ],
+  can: {},
+});
+
+/** What was handed over: those who gave and got it, whoever is in charge of the crew now, the office. */
+export const handOverPolicy = policy<AtSite>()({
+  sees: (actor, h) => [
+    actor.at(`${h}.site_id`, "officer", "auditor"),
+    `${h}.author_id = '${actor.userId}'`,
+    `${h}.recipient_id = '${actor.userId}'`,
+    actor.is("supervisor") &&
+      `EXISTS (SELECT 1 FROM crew_supervisors s WHERE s.crew_id = ${h}.crew_id AND s.user_id = '${actor.userId}' AND s.valid @> ${today})`,
+  ],
+  can: {},
+});
+
+/** Crews of which somebody meets hand-overs: also who was given one before the crew is theirs. */
+export const handOverCrewPolicy = policy<AtSite>()({
+  sees: (actor, c) => [
+    ...crewPolicy.sees(actor, c),
+    `EXISTS (SELECT 1 FROM hand_overs h WHERE h.crew_id = ${c}.id AND h.recipient_id = '${actor.userId}')`,
+  ],
+  can: {},
+});
+
 export const workerPolicy = policy<AtSite & { id: string }>()({
   sees: (actor, w) => [
     actor.at(`${w}.site_id`, "officer", "auditor"),
@@ -317,6 +348,24 @@ export const letterPolicy = policy<AtSite>()({
   can: { acknowledge: officerAt },
 });
 
+/** Letters as part of a worker's record: the worker's own are the worker's to read. */
+export const ownLetterPolicy = policy<AtSite>()({
+  sees: (actor, l) => [...letterPolicy.sees(actor, l), actor.owns(`${l}.worker_id`)],
+  can: {},
+});
+
+/** A worker's whole record as a document: the office's of its sites, a worker's own; no supervisor's and no visitor's. */
+export const exposureRecordPolicy = policy<AtSite>()({
+  sees: (actor, w) => [actor.at(`${w}.site_id`, "officer", "auditor"), actor.owns(`${w}.id`)],
+  can: {},
+});
+
+/** Reports of a site's year that were issued: whoever may read the year reads them, the officer issues. */
+export const yearReportPolicy = policy<AtSite>()({
+  sees: (actor, r) => [actor.at(`${r}.site_id`, "officer", "auditor")],
+  can: { issue: officerAt },
+});
+
 /** People and roles. An administrator grants them and reads no exposure by it. */
 export const userPolicy = policy<{ id: string }>()({
   sees: (actor, u) => [actor.is("administrator") && "TRUE", `${u}.id = '${actor.userId}'`],
@@ -391,6 +440,7 @@ const tableOfSubject = {
   plan: "plans",
   timetable: "timetables",
   draw: "record_draws",
+  "hand-over": "hand_overs",
 };
 
 /** The site an event is about, by its subject. */
@@ -425,8 +475,12 @@ export const may = {
   listRecords: (actor: Actor) => actor.is("officer", "auditor", "supervisor") || actor.isVisitor,
   /** Surveys, outings and what hangs on an instrument. */
   readMeasuring: (actor: Actor) => actor.is("officer", "auditor"),
+  /** Absences, loans and hand-overs of a crew, by whoever is in charge of it. */
+  planPeople: (actor: Actor) => actor.is("officer", "supervisor"),
   followUp: (actor: Actor) => actor.is("officer", "supervisor"),
   export: (actor: Actor) => actor.is("officer", "auditor") || actor.isVisitor,
+  readExposureRecord: (actor: Actor) => actor.is("officer", "auditor", "worker"),
+  readYearReports: (actor: Actor) => actor.is("officer", "auditor"),
   drawRecords: (actor: Actor) => actor.is("auditor"),
   readDraws: (actor: Actor) => actor.is("officer", "auditor"),
   reportProblem: (actor: Actor) => actor.is("worker"),

@@ -38,6 +38,7 @@ export const TOKEN_ROUTES: Readonly<Record<TokenScope, readonly string[]>> = {
     "GET /findings/:id",
     "GET /exports/year.csv",
     "GET /exports/year.zip",
+    "GET /exports/year.xlsx",
     "GET /exports/year-dictionary.csv",
     "GET /exports/gaps",
     "GET /exports/gap-names",

@@ -1,6 +1,6 @@
 import { evaluateDay } from "../../shared/acoustics/day";
 import { countsAsWorn } from "../../shared/acoustics/protection/at-ear";
-import { lcMinusLaDb } from "../../shared/acoustics/protection/attenuation";
+import { labelLess7Db, lcMinusLaDb } from "../../shared/acoustics/protection/attenuation";
 import { everyMethod } from "../../shared/acoustics/protection/every-method";
 import { mostAudioDb } from "../../shared/acoustics/protection/most-audio";
 import type {
@@ -128,7 +128,13 @@ export async function atEar({ task, inner, outer, worker }: Asked): Promise<AtEa
       active: protection.inner.active,
     },
     outer: outer && { modelId: outer.id, name: outer.name },
-    worker: worker && own && { id: worker.id, name: worker.name, ...own },
+    worker: worker &&
+      own && {
+        id: worker.id,
+        name: worker.name,
+        ...own,
+        labelLess7Db: outer ? null : labelLess7Db(protection.inner, ruleSet.protection),
+      },
     ruleSetKey: ruleSet.key,
     ruleSetVersion: ruleSet.version,
     creditsActivePart: settings.creditsActivePart,

@@ -1,7 +1,4 @@
 import type { z } from "zod";
-import { evaluateDay } from "../../shared/acoustics/day";
-import { buildDayInput, type DayContext } from "../../shared/day/build-day-input";
-import { summarizeDay } from "../../shared/day/summarize-day";
 import { foldOrders, ORDER_KINDS } from "../../shared/findings/orders";
 import { formatTime } from "../../shared/format/date";
 import type { CrewSheetRow, CrewSheetView } from "../../shared/schemas/crew";
@@ -13,8 +10,10 @@ import { type Actor, visible } from "../lib/policy";
 import type { Crew } from "../models/worker";
 import { crewPolicy, findingPolicy } from "../policies";
 import { dayFiguresOf } from "./day-figures";
-import { assignmentsOn, crewMembers, gridTasks, lastWearing, modelsOn } from "./day-grid";
+import { crewMembers } from "./day-grid";
+import { expectedDays } from "./expected-days";
 import { RULES_UNTIL } from "./finding-view";
+import { waitingHandOver } from "./hand-over-waiting";
 import { nextShiftDate } from "./next-shift";
 import { settingsInForce } from "./site-settings";
 
@@ -52,7 +51,7 @@ export async function crewSheet(actor: Actor, crew: Crew): Promise<z.input<typeo
     actor,
     members.map(({ id }) => id),
   );
-  const expected = await expectedDays(crew, expectedDate, members, settings);
+  const expected = await expectedOf(crew, expectedDate, members, settings);
   const before = lastDate ? await crewMembers(crew.id, lastDate) : [];
   const recorded = lastDate
     ? await dayFiguresOf(
@@ -64,9 +63,17 @@ export async function crewSheet(actor: Actor, crew: Crew): Promise<z.input<typeo
     member: (typeof members)[number],
     figures: CrewSheetRow["figures"],
   ): CrewSheetRow => ({
-    worker: { id: member.id, name: member.name, employeeNumber: member.employeeNumber },
+    worker: {
+      id: member.id,
+      name: member.name,
+      employeeNumber: member.employeeNumber,
+      employer: member.employer,
+      employerName: member.employerName,
+    },
     isAbsent: member.isAbsent,
     isLoan: member.isLoan,
+    lentBy: member.lentBy,
+    lentTo: member.lentTo,
     figures,
     order: orders.get(member.id) ?? null,
   });
@@ -96,6 +103,7 @@ export async function crewSheet(actor: Actor, crew: Crew): Promise<z.input<typeo
       date: lastDate,
       rows: before.map((member) => toRow(member, recorded.get(member.id) ?? null)).sort(byUrgency),
     },
+    handOver: await waitingHandOver(actor, crew.id),
   };
 }
 
@@ -106,67 +114,22 @@ function isShiftOver({ usualStart, usualLengthMin }: Crew, timeZone: string): bo
   return (now[0] ?? 0) * 60 + (now[1] ?? 0) >= (hour ?? 0) * 60 + (minute ?? 0) + usualLengthMin;
 }
 
-async function expectedDays(
-  crew: Crew,
+/** The figures of those who are there. */
+async function expectedOf(
+  { siteId, usualLengthMin }: Crew,
   date: string,
   members: Awaited<ReturnType<typeof crewMembers>>,
   settings: Awaited<ReturnType<typeof settingsInForce>>,
 ) {
-  const { governing } = settings;
-  const ids = `{${members.map(({ id }) => id).join(",")}}`;
-  const assignments = await assignmentsOn(ids, date);
-  const worn = await lastWearing(ids, date);
-  const models = await modelsOn(
-    [
-      ...new Set(
-        assignments.flatMap(({ innerModelId, outerModelId }) =>
-          outerModelId ? [innerModelId, outerModelId] : [innerModelId],
-        ),
-      ),
-    ],
-    date,
-  );
-  const context: DayContext = {
-    tasks: new Map((await gridTasks(crew.siteId, date)).map((task) => [task.id, task])),
-    models: new Map(models.map((model) => [model.modelId, model])),
-    site: {
-      wearFromDb: settings.wearFromDb,
-      creditsActivePart: settings.creditsActivePart,
-      usesUncertainty: settings.usesUncertainty,
-    },
-  };
+  const there = members
+    .filter(({ isAbsent, lentTo }) => !isAbsent && lentTo === null)
+    .map((member) => ({ ...member, usualLengthMin }));
+  const days = await expectedDays(siteId, date, there, settings);
   return new Map(
-    members.flatMap((member): [string, NonNullable<CrewSheetRow["figures"]>][] => {
-      if (member.isAbsent || member.nominal.length === 0) return [];
-      const tasks = member.nominal.map(({ taskId, durationMin }) => ({
-        taskId,
-        durationMin,
-        wornPct: worn.get(member.id)?.[taskId] ?? null,
-        wornIsShiftWide: false,
-      }));
-      const nominalMin = tasks.reduce((sum, { durationMin }) => sum + durationMin, 0);
-      const shift = {
-        id: "expected",
-        lengthMin: Math.max(crew.usualLengthMin, nominalMin),
-        tasks,
-        unaccounted: { how: "like-the-rest" } as const,
-        readings: [],
-      };
-      const input = buildDayInput(
-        member,
-        date,
-        [shift],
-        assignments.filter(({ workerId }) => workerId === member.id),
-        context,
-      );
-      const {
-        decidingTaskId: _,
-        dosePct: __,
-        doseBound: ___,
-        ...figures
-      } = summarizeDay(input, evaluateDay(input, governing, []), governing);
+    [...days].map(([workerId, summary]): [string, NonNullable<CrewSheetRow["figures"]>] => {
+      const { decidingTaskId: _, dosePct: __, doseBound: ___, ...figures } = summary;
       // Nothing is stored of a day to come: the id is the worker's own, so that a list has a key.
-      return [[member.id, { ...figures, resultId: member.id, origin: "computed" }]];
+      return [workerId, { ...figures, resultId: workerId, origin: "computed" }];
     }),
   );
 }

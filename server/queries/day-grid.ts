@@ -5,6 +5,7 @@ import type { DayGridView, GridRow, ShiftTaskInput } from "../../shared/schemas/
 import { todayAt } from "../lib/calendar";
 import { row, rows } from "../lib/db";
 import type { Crew } from "../models/worker";
+import { isAbsentOn } from "./attendance";
 import { dayFiguresOf } from "./day-figures";
 import { LEVEL_COLUMNS, PROTECTOR_COLUMNS, toProtector, toTaskLevel } from "./day-inputs";
 import { entryNotices } from "./entry-notices";
@@ -20,8 +21,14 @@ interface MemberRow {
   personalTargetDb: number | null;
   hiredOn: string;
   leftOn: string | null;
+  employer: "own" | "agency" | "contractor";
+  employerName: string | null;
   isLoan: boolean;
   isAbsent: boolean;
+  /** On loan to this crew: from which, and the last day. */
+  lentBy: { crewName: string | null; untilDate: string | null } | null;
+  /** With another crew on the date, which this one lent them to. */
+  lentTo: { crewName: string; untilDate: string | null } | null;
   nominal: { taskId: string; durationMin: number }[];
 }
 
@@ -31,12 +38,17 @@ export async function dayGrid(crew: Crew, date: string): Promise<DayGridView> {
     `SELECT name, time_zone AS "timeZone" FROM sites WHERE id = :id`,
     { id: crew.siteId },
   );
-  const members = await crewMembers(crew.id, date);
-  const ids = `{${members.map(({ id }) => id).join(",")}}`;
+  const belonging = await crewMembers(crew.id, date);
   const saved = await savedShifts("s.worker_id = ANY (CAST(:ids AS uuid[])) AND s.date = :date", {
-    ids,
+    ids: `{${belonging.map(({ id }) => id).join(",")}}`,
     date,
   });
+  // Whoever is lent to another crew is entered there, unless a shift here says otherwise.
+  const members = belonging.filter(
+    ({ id, lentTo }) =>
+      lentTo === null || saved.some((shift) => shift.workerId === id && shift.crewId === crew.id),
+  );
+  const ids = `{${members.map(({ id }) => id).join(",")}}`;
   const [tasks, assignments, lastWorn, longest, lastShifts, readings, figures, instruments, entry] =
     [
       await gridTasks(crew.siteId, date),
@@ -97,7 +109,10 @@ export async function dayGrid(crew: Crew, date: string): Promise<DayGridView> {
     ),
     models: await modelsOn(modelIds, date),
     instruments,
-    rows: members.map(({ nominal, isLoan, isAbsent, ...worker }): GridRow => {
+    rows: members.map((member): GridRow => {
+      const { nominal, isLoan, isAbsent, id, name, employeeNumber } = member;
+      const { mustWear, personalTargetDb, hiredOn, leftOn } = member;
+      const worker = { id, name, employeeNumber, mustWear, personalTargetDb, hiredOn, leftOn };
       const own = saved.find((shift) => shift.workerId === worker.id && shift.crewId === crew.id);
       return {
         worker,
@@ -131,8 +146,12 @@ export async function dayGrid(crew: Crew, date: string): Promise<DayGridView> {
 export async function crewMembers(crewId: string, date: string): Promise<MemberRow[]> {
   return rows<MemberRow>(
     `SELECT w.id, w.name, w.employee_number AS "employeeNumber", w.must_wear AS "mustWear", w.personal_target_db AS "personalTargetDb",
-       w.hired_on::text AS "hiredOn", w.left_on::text AS "leftOn", m.is_loan AS "isLoan",
-       EXISTS (SELECT 1 FROM absences a WHERE a.worker_id = w.id AND a.date = CAST(:date AS date)) AS "isAbsent",
+       w.hired_on::text AS "hiredOn", w.left_on::text AS "leftOn", m.is_loan AS "isLoan", w.employer, w.employer_name AS "employerName",
+       ${isAbsentOn("w.id", "CAST(:date AS date)")} AS "isAbsent",
+       CASE WHEN m.is_loan THEN json_build_object('untilDate', (upper(m.valid) - 1)::text, 'crewName', (SELECT min(c.name) FROM crew_memberships o JOIN crews c ON c.id = o.crew_id
+         WHERE o.worker_id = w.id AND NOT o.is_loan AND o.valid @> CAST(:date AS date))) END AS "lentBy",
+       CASE WHEN NOT m.is_loan THEN (SELECT json_build_object('untilDate', (upper(l.valid) - 1)::text, 'crewName', c.name) FROM crew_memberships l JOIN crews c ON c.id = l.crew_id
+         WHERE l.worker_id = w.id AND l.is_loan AND l.crew_id <> m.crew_id AND l.valid @> CAST(:date AS date) ORDER BY c.name LIMIT 1) END AS "lentTo",
        coalesce((SELECT json_agg(json_build_object('taskId', j.task_id, 'durationMin', j.duration_min) ORDER BY j.position)
                  FROM job_tasks j WHERE j.job_id = w.job_id), '[]') AS nominal
      FROM crew_memberships m JOIN workers w ON w.id = m.worker_id

@@ -35,9 +35,9 @@ export async function fitDistribution(
   siteId: string,
 ): Promise<z.input<typeof FitDistribution>> {
   const found = await rows<ModelFits>(
-    `SELECT m.id AS "modelId", m.name AS "modelName", p.data, count(*) FILTER (WHERE t.has_passed IS FALSE)::int AS "failedCount",
+    `SELECT m.id AS "modelId", m.name AS "modelName", p.data, count(*) FILTER (WHERE t.has_passed IS FALSE AND (t.need_db IS NULL OR t.need_db > 0))::int AS "failedCount",
        count(*)::int AS count, array_agg(t.par_db ORDER BY t.par_db) AS "parsDb", avg(t.par_db) AS "meanDb", stddev_samp(t.par_db) AS "sdDb"
-     FROM (SELECT DISTINCT ON (f.worker_id, f.model_id) f.model_id, v.par_db, v.has_passed
+     FROM (SELECT DISTINCT ON (f.worker_id, f.model_id) f.model_id, v.par_db, v.need_db, v.has_passed
            FROM fit_tests f JOIN fit_test_revisions v ON v.id = f.current_revision_id JOIN workers w ON w.id = f.worker_id
            WHERE f.site_id = :siteId AND NOT f.is_void AND v.par_db IS NOT NULL AND (w.left_on IS NULL OR w.left_on >= current_date)
              AND ${visible(fitPolicy, actor, "f")}

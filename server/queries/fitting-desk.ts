@@ -11,7 +11,7 @@ import { type Actor, abilities, visible } from "../lib/policy";
 import type { Worker } from "../models/worker";
 import { fitPolicy, issuePolicy } from "../policies";
 import { listFitTests } from "./fit-tests";
-import { fitsOf, offersAt, pairsOf, requiredGear } from "./register-offers";
+import { activeChecksOf, fitsOf, offersAt, pairsOf, requiredGear } from "./register-offers";
 import { FIT_POLICY } from "./sites";
 import { type WorkerNoise, workerNoise } from "./worker-noise";
 
@@ -37,6 +37,7 @@ export async function fittingDesk(actor: Actor, worker: Worker): Promise<Fitting
     ruleSetVersion: noise.governing.version,
     need: noise.need,
     policy,
+    creditsActivePart: noise.creditsActivePart,
     ...(await candidates(actor, worker, noise, today, [
       ...new Set([...facts.wornGear, ...(await gearOf(noise.day))]),
     ])),
@@ -71,7 +72,7 @@ const gearOf = (day: DayInput | null): Promise<WornGear[]> =>
 async function candidates(
   actor: Actor,
   worker: Worker,
-  { governing, day, need }: WorkerNoise,
+  { governing, creditsActivePart, day, need }: WorkerNoise,
   date: string,
   wornGear: readonly WornGear[],
 ): Promise<Pick<FittingDesk, "candidates" | "pairs">> {
@@ -85,6 +86,9 @@ async function candidates(
         )
       : [];
   const fits = await fitsOf([worker.id], date, governing.protection);
+  const creditedModelIds = creditsActivePart
+    ? (await activeChecksOf([worker.id], date)).get(worker.id)
+    : undefined;
   const rank = (ofThese: typeof offers): Candidate[] =>
     new ProtectorChoice(
       ofThese,
@@ -97,6 +101,7 @@ async function candidates(
       wornGear,
       wornMin: wornMinOf(noises),
       fits: fits.get(worker.id) ?? new Map(),
+      creditedModelIds,
     });
   const singles = rank(offers);
   const possible = singles.filter(({ excludedBy }) => excludedBy === null);

@@ -75,11 +75,13 @@ interface SideRow {
   median: number | null;
   lowest: number | null;
   highest: number | null;
+  lowestAtEar: number | null;
+  highestAtEar: number | null;
 }
 
 /**
- * Measured days without protection before and after a date, of the worker or the group that the finding is about. Only
- * exact figures under the rule set that the finding rests on: another's are another quantity.
+ * Measured days before and after a date, without protection and at the ear, of the worker or the group that the finding is
+ * about. Only exact figures under the rule set that the finding rests on: another's are another quantity.
  */
 async function proofSide(
   actor: Actor,
@@ -98,9 +100,12 @@ async function proofSide(
     doneOn,
     resultId: finding.lastResultId,
   };
+  const atEar = "FILTER (WHERE coalesce(r.at_ear_bound, 'exact') = 'exact')";
   const [summary] = await rows<SideRow>(
     `SELECT count(*)::int AS days, percentile_cont(0.5) WITHIN GROUP (ORDER BY r.outside_db) AS median, min(r.outside_db) AS lowest,
-       max(r.outside_db) AS highest ${from}`,
+       max(r.outside_db) AS highest,
+       min(coalesce(r.at_ear_counted_db, r.at_ear_db)) ${atEar} AS "lowestAtEar",
+       max(coalesce(r.at_ear_counted_db, r.at_ear_db)) ${atEar} AS "highestAtEar" ${from}`,
     values,
   );
   const latest = await rows<DayFiguresRow & { ofWorkerId: string; ofWorkerName: string }>(
@@ -112,6 +117,8 @@ async function proofSide(
     medianOutsideDb: summary?.median ?? null,
     lowestOutsideDb: summary?.lowest ?? null,
     highestOutsideDb: summary?.highest ?? null,
+    lowestAtEarDb: summary?.lowestAtEar ?? null,
+    highestAtEarDb: summary?.highestAtEar ?? null,
     latest: latest.map(({ ofWorkerId, ofWorkerName, ...figures }) => ({
       ...presentDayFigures(figures),
       worker: { id: ofWorkerId, name: ofWorkerName },

@@ -10,19 +10,19 @@ type Kind = z.infer<typeof GapKind>;
 type GapRow = z.infer<typeof GapNames>["rows"][number];
 
 /** From here on a person counts as being in noise: the lowest action value of the rule sets in common use, dB. */
-const IN_NOISE_DB = 80;
+export const IN_NOISE_DB = 80;
 /** Names listed at most; the count is of all. */
 const NAMES_LIMIT = 2000;
 
 const atEarKeys = RULE_SETS.filter((ruleSet) => mainLimit(ruleSet).judged === "at-the-ear").map(
   ({ key }) => `'${key}'`,
 );
-const judgesAtEar = `d.governing_rule_set IN (${[...new Set(atEarKeys)].join(", ")})`;
+export const judgesAtEar = `d.governing_rule_set IN (${[...new Set(atEarKeys)].join(", ")})`;
 /** A line that the rule set does not judge is not missing. */
-const isNotAssessed = `(d.verdict_outside = 'not-assessed' OR (d.verdict_at_ear = 'not-assessed' AND ${judgesAtEar}))`;
+export const isNotAssessed = `(d.verdict_outside = 'not-assessed' OR (d.verdict_at_ear = 'not-assessed' AND ${judgesAtEar}))`;
 
 /** The days of a site's year that the actor may see with what is needed of their current results: read once for all. */
-const yearDays = (actor: Actor) => `
+export const yearDays = (actor: Actor) => `
   year_days AS (
     SELECT d.worker_id, d.date, r.id AS result_id, r.outside_db, coalesce(r.at_ear_counted_db, r.at_ear_db) AS at_ear_db, r.grade, r.verdict_outside, r.verdict_at_ear, r.word, r.reason,
       r.governing_rule_set, r.governing_version
@@ -102,7 +102,7 @@ const gapQueries: Record<Kind, (actor: Actor) => string> = {
       SELECT 1 FROM shifts f WHERE f.worker_id = d.worker_id AND f.date = d.date AND NOT f.is_void)))`,
 };
 
-interface YearOfSite {
+export interface YearOfSite {
   siteId: string;
   year: number;
 }

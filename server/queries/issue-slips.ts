@@ -33,7 +33,7 @@ interface DeviceRow {
   size: string | null;
   kind: string;
   useName: string | null;
-  fit: { testedOn: string; hasPassed: boolean | null } | null;
+  fit: { testedOn: string; hasPassed: boolean | null; needDb: number | null } | null;
   issuedOn: string | null;
   cushionsDueOn: string | null;
   tipsDueOn: string | null;
@@ -172,7 +172,7 @@ const RANK = ({ word }: { word: string | null }): number =>
 const devicesOn = (ids: string, date: string): Promise<DeviceRow[]> =>
   rows<DeviceRow>(
     `SELECT a.id AS "assignmentId", a.worker_id AS "workerId", i.name AS "innerName", o.name AS "outerName", i.kind, a.size, coalesce(t.name, r.name) AS "useName",
-       (SELECT json_build_object('testedOn', f.tested_on::text, 'hasPassed', v.has_passed) FROM fit_test_revisions v JOIN fit_tests f ON f.id = v.fit_test_id
+       (SELECT json_build_object('testedOn', f.tested_on::text, 'hasPassed', v.has_passed, 'needDb', v.need_db) FROM fit_test_revisions v JOIN fit_tests f ON f.id = v.fit_test_id
         WHERE a.outer_model_id IS NULL AND v.id = ${fitInForce("a.worker_id", "a.inner_model_id", "a.size", "CAST(:date AS date)")}) AS fit,
        (SELECT CASE WHEN count(DISTINCT e.model_id) = 1 + (a.outer_model_id IS NOT NULL)::int THEN max(e.issued_on)::text END FROM protector_issues e
         WHERE e.worker_id = a.worker_id AND e.model_id IN (a.inner_model_id, a.outer_model_id) AND e.ended_on IS NULL) AS "issuedOn",

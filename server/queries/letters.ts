@@ -5,7 +5,7 @@ import { decodeCursor, pageFrom } from "../lib/cursor";
 import { row, rows } from "../lib/db";
 import { notFound } from "../lib/errors";
 import { type Actor, abilities, visible } from "../lib/policy";
-import { letterPolicy } from "../policies";
+import { letterPolicy, ownLetterPolicy } from "../policies";
 
 type Found = Omit<
   LetterView,
@@ -96,6 +96,15 @@ export async function listLetters(
   );
   const page = pageFrom(found, limit, ({ dueOn, id }) => [dueOn, id]);
   return { next: page.next, rows: page.rows.map((letter): LetterRow => present(actor, letter)) };
+}
+
+/** All letters of one worker, the latest first: the office's to read, and the worker's own. */
+export async function lettersOfWorker(actor: Actor, workerId: string): Promise<LetterRow[]> {
+  const found = await rows<Found>(
+    `${LETTERS} WHERE l.worker_id = :workerId AND ${visible(ownLetterPolicy, actor, "l")} ORDER BY l.written_at DESC, l.id`,
+    { workerId },
+  );
+  return found.map((letter) => present(actor, letter));
 }
 
 /** @throws AppError not-found */

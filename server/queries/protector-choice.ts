@@ -14,7 +14,14 @@ import { only } from "../lib/only";
 import { type Actor, visible } from "../lib/policy";
 import { workerPolicy } from "../policies";
 import { gridTasks } from "./day-grid";
-import { bareTask, fitsOf, offersAt, pairsOf, requiredGear } from "./register-offers";
+import {
+  activeChecksOf,
+  bareTask,
+  fitsOf,
+  offersAt,
+  pairsOf,
+  requiredGear,
+} from "./register-offers";
 import { settingsInForce } from "./site-settings";
 
 /** Whose noise protectors are compared for. */
@@ -66,6 +73,8 @@ export async function protectorChoice(
   const gear = await requiredGear(noises.map(({ taskId }) => taskId));
   const singles = await offersAt(actor, siteId, date);
   const pairs = await pairsOf(singles, date);
+  const wearers = await wearersOf(actor, subject, date, governing.protection);
+  const creditedModelIds = settings.creditsActivePart ? checkedOnAll(wearers) : undefined;
   const rank = (offers: typeof singles): RankedProtector[] =>
     new ProtectorChoice(
       offers,
@@ -78,8 +87,8 @@ export async function protectorChoice(
       wornGear: gear,
       wornMin: wornMinOf(noises),
       fits: new Map(),
+      creditedModelIds,
     });
-  const wearers = await wearersOf(actor, subject, date, governing.protection);
   return {
     subject: { ...subject, siteName: site.name },
     date,
@@ -95,6 +104,7 @@ export async function protectorChoice(
     })),
     isDurationAssumed: subject.kind === "task" && longestMin === null,
     requiredGear: gear,
+    creditsActivePart: settings.creditsActivePart,
     singles: rank(singles),
     pairs: rank(pairs)
       .filter(({ excludedBy }) => excludedBy?.code !== "no-data")
@@ -102,6 +112,16 @@ export async function protectorChoice(
     wearers: wearers.slice(0, MOST_WEARERS),
     hasMoreWearers: wearers.length > MOST_WEARERS,
   };
+}
+
+/** What is credited for a group is what the verdict of each of them would rest on; more than are known prove nothing. */
+function checkedOnAll(wearers: readonly Wearer[]): Set<string> {
+  const [first, ...others] = wearers.length > MOST_WEARERS ? [] : wearers;
+  return new Set(
+    first?.checkedModelIds.filter((modelId) =>
+      others.every(({ checkedModelIds }) => checkedModelIds.includes(modelId)),
+    ),
+  );
 }
 
 /** How long each task of a job's nominal day lasts, in minutes by task. */
@@ -121,7 +141,7 @@ async function longestNominalMin(taskId: string): Promise<number | null> {
   return found?.longest ?? null;
 }
 
-type WearerRow = Omit<Wearer, "fits"> & { wornGear: WornGear[] };
+type WearerRow = Omit<Wearer, "fits" | "checkedModelIds"> & { wornGear: WornGear[] };
 
 /** Workers of the job, or of the jobs that have the task, with what is assigned to them for this use. */
 async function wearersOf(
@@ -153,13 +173,12 @@ async function wearersOf(
      ORDER BY w.name, w.id LIMIT ${MOST_WEARERS + 1}`,
     { id, siteId, date },
   );
-  const fits = await fitsOf(
-    found.map(({ id: workerId }) => workerId),
-    date,
-    rule,
-  );
+  const ids = found.map(({ id: workerId }) => workerId);
+  const fits = await fitsOf(ids, date, rule);
+  const checks = await activeChecksOf(ids, date);
   return found.map((worker) => ({
     ...worker,
+    checkedModelIds: [...(checks.get(worker.id) ?? [])],
     fits: [...(fits.get(worker.id) ?? [])].map(([modelId, { parDb, hasPassed, needDb }]) => ({
       modelId,
       parDb,

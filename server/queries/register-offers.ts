@@ -16,7 +16,7 @@ import { rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
 import { protectorPolicy } from "../policies";
 import { PROTECTOR_COLUMNS, toProtector } from "./day-inputs";
-import { combinationInForce } from "./own-attenuation";
+import { activeCheckInForce, combinationInForce } from "./own-attenuation";
 
 type OfferRow = Parameters<typeof toProtector>[0] & { stock: number | null };
 
@@ -107,6 +107,30 @@ export async function fitsOf(
 }
 
 type FitRow = OwnFit & { workerId: string; modelId: string; facts: FitFacts };
+
+/**
+ * By worker the models whose active part has passed its check on them, which is what a day's verdict would rest on: of
+ * the size that is assigned, where one is.
+ */
+export async function activeChecksOf(
+  workerIds: readonly string[],
+  date: string,
+): Promise<Map<string, Set<string>>> {
+  const found = await rows<{ workerId: string; modelId: string }>(
+    `SELECT x.worker_id AS "workerId", x.model_id AS "modelId"
+     FROM (SELECT DISTINCT f.worker_id, f.model_id, CAST(:date AS date) AS date FROM fit_tests f JOIN fit_test_revisions v ON v.id = f.current_revision_id
+       WHERE f.worker_id = ANY (CAST(:ids AS uuid[])) AND NOT f.is_void AND v.active_passed) x
+     LEFT JOIN LATERAL (SELECT s.size FROM assignments s
+       WHERE s.worker_id = x.worker_id AND s.inner_model_id = x.model_id AND s.outer_model_id IS NULL AND s.valid @> x.date
+       ORDER BY (s.task_id IS NULL AND s.area_id IS NULL) DESC, s.id LIMIT 1) a ON TRUE
+     JOIN fit_test_revisions c ON c.id = ${activeCheckInForce("x.worker_id", "x.model_id", "a.size", "x.date")} AND c.active_passed`,
+    { ids: `{${workerIds.join(",")}}`, date },
+  );
+  const checks = new Map<string, Set<string>>();
+  for (const { workerId, modelId } of found)
+    checks.set(workerId, (checks.get(workerId) ?? new Set()).add(modelId));
+  return checks;
+}
 
 /** What these tasks ask to be worn beside a protector. */
 export async function requiredGear(taskIds: readonly string[]): Promise<WornGear[]> {

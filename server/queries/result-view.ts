@@ -95,16 +95,10 @@ async function view(found: Found | null): Promise<z.input<typeof ResultView>> {
     "SELECT f.id, f.kind, f.state FROM finding_evidence e JOIN findings f ON f.id = e.finding_id WHERE e.worker_id = :workerId AND e.date = :date ORDER BY f.opened_at",
     { workerId, date },
   );
-  const earlier = await rows<{
-    id: string;
-    computedAt: Date;
-    isCurrent: boolean;
-    governingRuleSet: string;
-    ruleSetVersion: number;
-    methodVersion: number;
-  }>(
-    `SELECT r.id, r.computed_at AS "computedAt", coalesce(d.current_result_id = r.id, FALSE) AS "isCurrent", r.governing_rule_set AS "governingRuleSet",
-       r.governing_version AS "ruleSetVersion", r.method_version AS "methodVersion"
+  const earlier = await rows<
+    DayFiguresRow & { computedAt: Date; isCurrent: boolean; methodVersion: number }
+  >(
+    `SELECT ${DAY_FIGURES_COLUMNS("r")}, r.computed_at AS "computedAt", coalesce(d.current_result_id = r.id, FALSE) AS "isCurrent", r.method_version AS "methodVersion"
      FROM day_results r LEFT JOIN days d ON d.worker_id = r.worker_id AND d.date = r.date
      WHERE r.worker_id = :workerId AND r.date = :date AND r.id <> :id ORDER BY r.computed_at DESC LIMIT 20`,
     { workerId, date, id: found.resultId },
@@ -127,7 +121,18 @@ async function view(found: Found | null): Promise<z.input<typeof ResultView>> {
     sources: Object.fromEntries(sources.map(({ id, label, note }) => [id, { label, note }])),
     findings,
     wearingSeen: await wearingThatDiffers(workerId, date, timedIds),
-    earlier: earlier.map((one) => ({ ...one, computedAt: one.computedAt.toISOString() })),
+    earlier: earlier.map((one) => {
+      const figures = presentDayFigures(one);
+      return {
+        id: figures.resultId,
+        computedAt: one.computedAt.toISOString(),
+        isCurrent: one.isCurrent,
+        governingRuleSet: figures.ruleSetKey,
+        ruleSetVersion: figures.ruleSetVersion,
+        methodVersion: one.methodVersion,
+        figures,
+      };
+    }),
   };
 }
 

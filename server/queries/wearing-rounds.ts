@@ -16,6 +16,7 @@ import { only } from "../lib/only";
 import { type Actor, abilities, visible } from "../lib/policy";
 import type { Crew } from "../models/worker";
 import { roundPolicy, wearingPolicy } from "../policies";
+import { isAbsentOn, isLentOn } from "./attendance";
 import { lookReplaced } from "./own-attenuation";
 
 type Found = Omit<WearingRoundView, "can">;
@@ -86,7 +87,7 @@ export async function wearingTally(crew: Crew, date: string): Promise<WearingTal
      JOIN LATERAL (SELECT t.wear_from_db FROM site_settings t WHERE t.site_id = :siteId AND t.effective_from <= CAST(:date AS date)
        ORDER BY t.effective_from DESC, t.number DESC LIMIT 1) g ON TRUE
      WHERE m.crew_id = :crewId AND m.valid @> CAST(:date AS date) AND (w.left_on IS NULL OR w.left_on >= CAST(:date AS date))
-       AND NOT EXISTS (SELECT 1 FROM absences a WHERE a.worker_id = w.id AND a.date = CAST(:date AS date))
+       AND NOT ${isAbsentOn("w.id", "CAST(:date AS date)")} AND NOT ${isLentOn("m", "CAST(:date AS date)")}
      ORDER BY w.name, w.id`,
     { crewId: crew.id, siteId: crew.siteId, date },
   );

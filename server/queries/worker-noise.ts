@@ -18,6 +18,8 @@ const RECENT_FOR_DAYS = 92;
 export interface WorkerNoise {
   need: AttenuationNeed;
   governing: RuleSetVersion;
+  /** The site credits an active part that was checked on its wearer. */
+  creditsActivePart: boolean;
   /** The day that asks for most, under the rules of today; null: no noise is known. */
   day: DayInput | null;
   /** The task in it that does; null where the rule judges the shift. */
@@ -38,10 +40,10 @@ interface Asking {
  */
 export async function workerNoise(worker: Person, date: string): Promise<WorkerNoise> {
   const settings = await settingsInForce(worker.siteId, date);
-  const { governing } = settings;
+  const { governing, creditsActivePart } = settings;
   const site = {
     wearFromDb: settings.wearFromDb,
-    creditsActivePart: settings.creditsActivePart,
+    creditsActivePart,
     usesUncertainty: settings.usesUncertainty,
   };
   const judgedNow = (day: DayInput): DayInput => ({
@@ -59,6 +61,7 @@ export async function workerNoise(worker: Person, date: string): Promise<WorkerN
     return {
       need: unknown("no-noise"),
       governing,
+      creditsActivePart,
       day: days[0] ? judgedNow(days[0]) : null,
       task: null,
     };
@@ -67,6 +70,7 @@ export async function workerNoise(worker: Person, date: string): Promise<WorkerN
   const taskName = task?.name ?? null;
   return {
     governing,
+    creditsActivePart,
     day,
     task,
     need: need

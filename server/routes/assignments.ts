@@ -1,4 +1,5 @@
 import { literal, Op } from "sequelize";
+import { GivingPreview } from "../../shared/schemas/choice";
 import { IdParams } from "../../shared/schemas/common";
 import {
   AssignmentEnd,
@@ -8,8 +9,9 @@ import {
   ManyAssigned,
   ManyAssignmentsInput,
 } from "../../shared/schemas/worker";
-import { assignProtector, assignToMany } from "../commands/assign-protector";
+import { assignProtector, assignToMany, type Paths } from "../commands/assign-protector";
 import { endAssignment } from "../commands/end-assignment";
+import { previewGiving } from "../commands/preview-giving";
 import { endpoint } from "../lib/endpoint";
 import { notFound } from "../lib/errors";
 import { only } from "../lib/only";
@@ -40,6 +42,12 @@ async function workersToAssign(actor: Actor, ids: readonly string[]): Promise<Wo
     return worker;
   });
 }
+
+/** Where an issue of the assignment of many stands. */
+const ofMany: Paths = {
+  field: (name) => ["assignment", name],
+  worker: (index) => ["workerIds", index],
+};
 
 export function defineAssignmentRoutes(): void {
   endpoint.get(
@@ -89,13 +97,23 @@ export function defineAssignmentRoutes(): void {
     },
     async ({ actor, body }) => {
       const workers = await workersToAssign(actor, body.workerIds);
-      const { ids, alreadyHad } = await assignToMany(actor, workers, body.assignment, {
-        field: (name) => ["assignment", name],
-        worker: (index) => ["workerIds", index],
-      });
+      const { ids, alreadyHad } = await assignToMany(actor, workers, body.assignment, ofMany);
       const assigned = ids.length === 0 ? [] : await listAssignments(actor, { ids });
       return { rows: assigned.map(presentAssignment), alreadyHad };
     },
+  );
+
+  endpoint.post(
+    "/assignments/many/preview",
+    {
+      summary: "Who would change verdict if these workers were given a protector, and the stock",
+      may: may.officer,
+      body: ManyAssignmentsInput,
+      reply: GivingPreview,
+      storesNothing: true,
+    },
+    async ({ actor, body }) =>
+      previewGiving(actor, await workersToAssign(actor, body.workerIds), body.assignment, ofMany),
   );
 
   endpoint.patch(

@@ -12,6 +12,7 @@ import { recordYearRead } from "../commands/record-read";
 import type { Config } from "../config";
 import { streamYear } from "../exports/year-csv";
 import { yearDictionary } from "../exports/year-dictionary";
+import { streamYearWorkbook } from "../exports/year-workbook";
 import { streamYearZip } from "../exports/year-zip";
 import { recordAudit } from "../lib/audit";
 import { inTransaction } from "../lib/db";
@@ -31,7 +32,7 @@ async function siteToExport(
 }
 
 /** A file name that every system takes. */
-const fileName = (site: string, year: number, ending: "csv" | "zip") =>
+const fileName = (site: string, year: number, ending: "csv" | "zip" | "xlsx") =>
   `${
     site
       .normalize("NFKD")
@@ -105,6 +106,47 @@ export function defineExportRoutes(config: Pick<Config<"web">, "DATABASE_URL">):
         response.end();
       } catch (error) {
         // Cut off in the middle, it has no list of files and no manifest.
+        if (response.headersSent) response.destroy();
+        else response.removeHeader("content-disposition");
+        throw error;
+      }
+    },
+  );
+
+  endpoint.get(
+    "/exports/year.xlsx",
+    {
+      summary: "A site's year with all its records as a workbook, a sheet for each table, streamed",
+      may: may.export,
+      query: YearFileQuery,
+      streams: true,
+    },
+    async ({ actor, query, response }) => {
+      const { year, workers } = query;
+      const site = await inTransaction({ organizationId: actor.organizationId }, async () => {
+        const found = await siteToExport(actor, query);
+        await recordAudit(actor, {
+          action: "export-year-workbook",
+          subjectKind: "site",
+          subjectId: found.id,
+          values: { year, workers },
+        });
+        await recordYearRead(actor, found.id, year);
+        return found;
+      });
+      const salt = randomBytes(16).toString("hex");
+      response
+        .attachment(fileName(site.name, year, "xlsx"))
+        .type("application/vnd.openxmlformats-officedocument.spreadsheetml.sheet");
+      try {
+        await streamYearWorkbook(
+          actor,
+          { siteId: site.id, year, workers, salt },
+          new Date(),
+          response,
+        );
+      } catch (error) {
+        // Cut off in the middle, it has no list of sheets and opens nowhere.
         if (response.headersSent) response.destroy();
         else response.removeHeader("content-disposition");
         throw error;

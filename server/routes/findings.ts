@@ -54,7 +54,7 @@ export function defineFindingRoutes(): void {
     async ({ actor, params, body, ifMatch }) => {
       const finding = await findVisible(Finding, findingPolicy, params.id, actor, { lock: true });
       const action =
-        body.kind === "mark-done" || body.kind === "cannot"
+        body.kind === "mark-done" || body.kind === "cannot" || body.kind === "undo"
           ? "markDone"
           : body.kind === "comment"
             ? "comment"

@@ -1,6 +1,8 @@
 import { IdParams } from "../../shared/schemas/common";
+import { DigestInput, DigestView } from "../../shared/schemas/digest";
 import { OwnSettings, UserChange, UserInput, UserList, UserView } from "../../shared/schemas/user";
 import { changeUser } from "../commands/change-user";
+import { chooseDigest } from "../commands/choose-digest";
 import { createUser } from "../commands/create-user";
 import { revokeUser } from "../commands/revoke-user";
 import { setOwnLanguage } from "../commands/set-own-language";
@@ -12,6 +14,7 @@ import { requireRevision } from "../lib/revision";
 import { User } from "../models/user";
 import { may, userPolicy } from "../policies";
 import { presentUser } from "../presenters/user";
+import { ownDigest } from "../queries/digests";
 import { listUsers } from "../queries/users";
 
 const view = async (actor: Actor, id: string) =>
@@ -71,6 +74,27 @@ export function defineUserRoutes(): void {
       await requireRevision(user, ifMatch, () => view(actor, user.id));
       await revokeUser(actor, user);
       return view(actor, user.id);
+    },
+  );
+
+  endpoint.get(
+    "/me/digest",
+    { summary: "One's own daily mail about one's crews", may: may.planPeople, reply: DigestView },
+    async ({ actor }) => ownDigest(actor),
+  );
+
+  endpoint.put(
+    "/me/digest",
+    {
+      summary: "Choose the hour of one's own daily mail, or none",
+      may: may.planPeople,
+      body: DigestInput,
+      reply: DigestView,
+      needsRevision: true,
+    },
+    async ({ actor, body, ifMatch }) => {
+      await chooseDigest(actor, body, ifMatch);
+      return ownDigest(actor);
     },
   );
 

@@ -107,6 +107,12 @@ export function formatMonth(isoDate: string, locale: Locale): string {
   return short(localParts(isoDate, locale, "long").month);
 }
 
+/** "January" of 1, alone in a column. */
+export const formatMonthName = (month: number, locale: Locale): string =>
+  new Intl.DateTimeFormat(locale, { month: "long", timeZone: "UTC" }).format(
+    new Date(Date.UTC(2026, month - 1, 1)),
+  );
+
 /** "22:00" of an instant in the site's zone. */
 export function formatTime(instant: string, timeZone: string): string {
   const { hour, minute } = partsOf(new Date(instant), "en", timeZone);

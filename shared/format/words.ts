@@ -2,10 +2,14 @@ import type { Locale } from "../i18n/index";
 
 /** German words that labels begin with and that are no nouns: only these lose their capital inside a sentence. */
 const NO_NOUNS: ReadonlySet<string> = new Set([
+  "Ab",
   "Abgeschlossen",
   "Darunter",
   "Darüber",
+  "Die",
   "Erledigt",
+  "Etwa",
+  "Gar",
   "In",
   "Kein",
   "Linkes",
@@ -32,9 +36,9 @@ export function withinSentence(text: string, locale: Locale | string): string {
     : text;
 }
 
-/** The same text at the start of a sentence. */
-export function startsSentence(text: string): string {
-  return text.charAt(0).toLocaleUpperCase() + text.slice(1);
+/** The same text at the start of a sentence: a weekday, say, which Polish and Spanish write small. */
+export function startsSentence(text: string, locale?: Locale): string {
+  return text.charAt(0).toLocaleUpperCase(locale) + text.slice(1);
 }
 
 /** What somebody typed, inside a sentence that ends by itself: without a stop of its own. */

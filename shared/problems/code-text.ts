@@ -54,6 +54,12 @@ export function codeText(i18n: I18n, code: string, params: ProblemParams): strin
       return i18n.t("This worker has a protector for that use on those days.");
     case "membership-overlaps":
       return i18n.t("The dates overlap with a membership that is there.");
+    case "loan-overlaps":
+      return i18n.t("This person is lent to a crew on some of these days already.");
+    case "loan-has-begun":
+      return i18n.t("This loan has begun; give it a last day.");
+    case "absence-overlaps":
+      return i18n.t("This person is marked as not in on some of these days already.");
     case "last-administrator":
       return i18n.t("Somebody has to remain administrator.");
     case "role-granted-already":
@@ -64,6 +70,8 @@ export function codeText(i18n: I18n, code: string, params: ProblemParams): strin
       return i18n.t("A finding for this cause is open already.");
     case "finding-closed":
       return i18n.t("This finding is closed.");
+    case "too-late-to-undo":
+      return i18n.t("It is too late to undo this. Write a comment to the officer.");
     case "plan-put-aside-already":
       return i18n.t("This plan has been put aside already.");
     case "notice-sent-already":

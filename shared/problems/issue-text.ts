@@ -42,6 +42,9 @@ function formatText(i18n: I18n, format: unknown): string {
       return i18n.t("This is not a date.");
     case "email":
       return i18n.t("This is not a mail address.");
+    // Nobody types one: it is chosen from a list.
+    case "uuid":
+      return i18n.t("Choose one of these.");
     default:
       return i18n.t("This is not written as it should be.");
   }
@@ -272,6 +275,18 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("Nobody at this site has {numbers}.", { numbers: String(params.numbers) });
     case "site-stays":
       return i18n.t("It stays with its site: strike it out and enter it at the other.");
+    case "not-in-crew":
+      return i18n.t("This person does not belong to the crew on those days.");
+    case "shift-entered":
+      return i18n.t("A shift of this person is entered on one of those days.");
+    case "beyond-loan":
+      return i18n.t(
+        "This person is lent to the crew only until before that; give a day within the loan.",
+      );
+    case "not-of-this-crew":
+      return i18n.t("This person is neither in charge of the crew nor an officer of the site.");
+    case "other-crew":
+      return i18n.t("Choose another crew of the site that is in use.");
     case "not-of-this-site":
       return i18n.t("This person has no part in the site’s findings.");
     case "flat-or-bands":

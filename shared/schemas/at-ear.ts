@@ -94,6 +94,8 @@ export const AtEarView = z.object({
       name: z.string(),
       /** The fit that counts today, dB; null: none, or two are worn. */
       ownFitDb: z.number().nullable(),
+      /** Where Appendix B governs, the label’s US number less 7, dB: it stands beside an own fit. */
+      labelLess7Db: z.number().nullable(),
       activeCheckPassed: z.boolean(),
       /** Of the assignment in force, dB(A). */
       audioDb: z.number().nullable(),

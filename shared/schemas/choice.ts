@@ -1,6 +1,8 @@
 import { z } from "zod";
 import { IsoDate } from "./common";
+import { DayFigures } from "./finding";
 import { Candidate, Gear } from "./fit";
+import { ChangePreview } from "./site";
 
 /** For which noise protectors are compared: a task's, or the nominal day of a job. */
 export const ChoiceQuery = z
@@ -45,6 +47,8 @@ export const Wearer = z.object({
       needDb: z.number().nullable(),
     }),
   ),
+  /** Models whose active part has passed its check on this worker. */
+  checkedModelIds: z.array(z.uuid()),
 });
 export type Wearer = z.infer<typeof Wearer>;
 
@@ -73,6 +77,8 @@ export const ProtectorChoiceView = z.object({
   /** Eight hours stand for a task that is in no job's nominal day. */
   isDurationAssumed: z.boolean(),
   requiredGear: z.array(Gear),
+  /** The site credits an active part that was checked on its wearer: here, where it was on all of them. */
+  creditsActivePart: z.boolean(),
   singles: z.array(Candidate),
   /** A plug under a muff; the ones that the rule can say something of. */
   pairs: z.array(Candidate),
@@ -81,6 +87,35 @@ export const ProtectorChoiceView = z.object({
   hasMoreWearers: z.boolean(),
 });
 export type ProtectorChoiceView = z.infer<typeof ProtectorChoiceView>;
+
+/** What a usual day comes to, as far as a protector decides it. */
+const UsualDay = DayFigures.pick({ verdictAtEar: true, word: true, atEarDb: true });
+
+/** Who would change verdict if these workers were given a protector, before it is. */
+export const GivingPreview = z.object({
+  /** Whose nominal day changes verdict or word, the gravest first. */
+  changes: z.array(
+    z.object({ workerId: z.uuid(), workerName: z.string(), before: UsualDay, after: UsualDay }),
+  ),
+  /** How many usual days were looked at; and who has none, so that nothing can be said. */
+  daysCount: z.number(),
+  withoutDayCount: z.number(),
+  /** Days on record from the first day on. */
+  recorded: ChangePreview,
+  /** Devices that would have to be handed out, beside what the workers' sites have of them. */
+  stock: z.array(
+    z.object({
+      siteName: z.string(),
+      modelId: z.uuid(),
+      modelName: z.string(),
+      /** Who does not have one in hand yet. */
+      neededCount: z.number(),
+      /** Null: nothing of it was ever entered there. */
+      stockCount: z.number().nullable(),
+    }),
+  ),
+});
+export type GivingPreview = z.infer<typeof GivingPreview>;
 
 export const SlipsQuery = z.object({
   /** Ids with commas between them. */
@@ -120,7 +155,14 @@ export const IssueSlip = z.object({
       word: z
         .enum(["too-little", "just-enough", "good", "strong-side", "too-much", "enough"])
         .nullable(),
-      fit: z.object({ testedOn: IsoDate, hasPassed: z.boolean().nullable() }).nullable(),
+      fit: z
+        .object({
+          testedOn: IsoDate,
+          hasPassed: z.boolean().nullable(),
+          /** Nothing had to come off: then it neither passed nor failed, whatever was stored. */
+          needDb: z.number().nullable(),
+        })
+        .nullable(),
       /** When it was handed out, of two worn together the later; null: assigned, and not handed out yet. */
       issuedOn: IsoDate.nullable(),
       cushionsDueOn: IsoDate.nullable(),

@@ -60,9 +60,19 @@ export const SupervisorNameQuery = z.object({ siteId: z.uuid() });
 
 /** One worker on the Crew sheet. */
 export const CrewSheetRow = z.object({
-  worker: z.object({ id: z.uuid(), name: z.string(), employeeNumber: z.string() }),
+  worker: z.object({
+    id: z.uuid(),
+    name: z.string(),
+    employeeNumber: z.string(),
+    employer: z.enum(["own", "agency", "contractor"]),
+    employerName: z.string().nullable(),
+  }),
   isAbsent: z.boolean(),
   isLoan: z.boolean(),
+  /** On loan to this crew: by which one, and until when. */
+  lentBy: z.object({ crewName: z.string().nullable(), untilDate: IsoDate.nullable() }).nullable(),
+  /** With another crew that day: expected there and not here. */
+  lentTo: z.object({ crewName: z.string(), untilDate: IsoDate.nullable() }).nullable(),
   figures: DayFigures.nullable(),
   /** The one order for this worker today, and the finding it comes from. */
   order: z
@@ -94,5 +104,7 @@ export const CrewSheetView = z.object({
   ruleSetVersion: z.number(),
   expected: z.object({ date: IsoDate, rows: z.array(CrewSheetRow) }),
   last: z.object({ date: IsoDate.nullable(), rows: z.array(CrewSheetRow) }),
+  /** Given to whoever reads this, and not acknowledged yet. */
+  handOver: z.object({ id: z.uuid(), byName: z.string(), givenAt: z.string() }).nullable(),
 });
 export type CrewSheetView = z.infer<typeof CrewSheetView>;

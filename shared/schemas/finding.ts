@@ -119,6 +119,7 @@ export const FindingStep = z.object({
     "rules-changed",
     "handed-over",
     "escalated",
+    "undone",
   ]),
   fromState: FindingState.nullable(),
   toState: FindingState.nullable(),
@@ -160,6 +161,8 @@ export const FindingStepInput = z.discriminatedUnion("kind", [
   z.object({ kind: z.literal("cannot"), text: Reason }),
   z.object({ kind: z.literal("reopen"), text: Reason }),
   z.object({ kind: z.literal("close"), text: Reason }),
+  /** Takes back one's own Mark done or Can't, moments after it; it closes and reopens nothing. */
+  z.object({ kind: z.literal("undo") }),
   z.object({ kind: z.literal("comment"), text: z.string().trim().min(1).max(10_000) }),
 ]);
 export type FindingStepInput = z.infer<typeof FindingStepInput>;

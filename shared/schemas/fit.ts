@@ -91,7 +91,9 @@ export const FitTestView = z.object({
   parDb: z.number().nullable(),
   hasPassed: z.boolean().nullable(),
   activePassed: z.boolean().nullable(),
-  /** Whether the device was issued on it, or only tried. */
+  /** Where Appendix B governs today, the label’s US number less 7, dB: it stands beside the PAR. */
+  labelLess7Db: z.number().nullable(),
+  /** Whether the device was issued on it, or is out with this worker in that size; else it was only tried. */
   outcome: z.enum(["issued", "tried"]),
   dueOn: IsoDate.nullable(),
   isVoid: z.boolean(),
@@ -139,6 +141,10 @@ export const Candidate = z.object({
     .nullable(),
   /** While worn in the noise that decides; under a rule that judges the shift in the loudest. */
   wornDb: z.number().nullable(),
+  /** The same with its active part on; null: it has none, or nothing is known of it there. */
+  wornActiveDb: z.number().nullable(),
+  /** Word and margin are of the active part on: credited at the site, and checked on who wears it. */
+  isActiveCredited: z.boolean(),
   wornIn: z.string().nullable(),
   /** The shift's TWA with it on, where the rule judges the shift. */
   twaDb: z.number().nullable(),
@@ -202,6 +208,8 @@ export const FittingDesk = z.object({
     everyMonths: z.number().nullable(),
     afterFailDays: z.number().nullable(),
   }),
+  /** The site credits an active part that was checked on its wearer. */
+  creditsActivePart: z.boolean(),
   candidates: z.array(Candidate),
   /** Two together, where every single one leaves too little. */
   pairs: z.array(Candidate),
@@ -220,6 +228,15 @@ export const FittingDesk = z.object({
   can: Can("test", "issue"),
 });
 export type FittingDesk = z.infer<typeof FittingDesk>;
+
+/** Why a reason is asked for before a device goes out; null: none is. */
+export function reasonAskedFor(
+  kindsOffered: readonly string[],
+  stock: number | null,
+): "one-kind-offered" | "none-in-stock" | null {
+  if (new Set(kindsOffered).size < 2) return "one-kind-offered";
+  return stock !== null && stock < 1 ? "none-in-stock" : null;
+}
 
 /** Hands a device out: the assignment, the stock and the acknowledgement in one. */
 export const IssueInput = z.object({

@@ -81,6 +81,9 @@ const ProofSide = z.object({
   medianOutsideDb: z.number().nullable(),
   lowestOutsideDb: z.number().nullable(),
   highestOutsideDb: z.number().nullable(),
+  /** Of the same days at the ear, dB; null where none says it exactly. */
+  lowestAtEarDb: z.number().nullable(),
+  highestAtEarDb: z.number().nullable(),
   latest: z.array(DayFigures.extend({ worker: z.object({ id: z.uuid(), name: z.string() }) })),
 });
 

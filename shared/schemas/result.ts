@@ -12,6 +12,16 @@ export const ResultRef = z.object({
   governingRuleSet: z.string(),
   ruleSetVersion: z.number(),
   methodVersion: z.number(),
+  /** What it came to, for one to be told from another. */
+  figures: DayFigures.pick({
+    outsideDb: true,
+    atEarDb: true,
+    whileWornDb: true,
+    verdictOutside: true,
+    verdictAtEar: true,
+    word: true,
+    governingCriteria: true,
+  }),
 });
 
 /** A day with everything its working is drawn from; the working itself is built by the same engine where it is shown. */

@@ -1,5 +1,5 @@
 import { describe, expect, test } from "vitest";
-import { addDays, atLocalTime, localDate, localTime } from "./zone";
+import { addDays, atLocalTime, atOrAfterLocalTime, localDate, localTime } from "./zone";
 
 describe("local time in a zone (transitions from the IANA time zone database)", () => {
   test("an ordinary evening", () => {
@@ -23,6 +23,20 @@ describe("local time in a zone (transitions from the IANA time zone database)", 
 
   test("summer time begins: 02:30 never comes in Chicago on 8 March 2026", () => {
     expect(atLocalTime("2026-03-08", "02:30", "America/Chicago")).toEqual({ kind: "skipped" });
+  });
+
+  test.each([
+    ["2026-03-08", "02:00", "America/Chicago", "2026-03-08T08:00:00Z"],
+    ["2026-03-08", "02:30", "America/Chicago", "2026-03-08T08:00:00Z"],
+    ["2026-10-25", "01:00", "Europe/London", "2026-10-25T00:00:00Z"],
+    ["2026-10-04", "02:00", "Australia/Lord_Howe", "2026-10-03T15:30:00Z"],
+    // At midnight the clock goes from 23:59 to 01:00, in Santiago on 6 September 2026.
+    ["2026-09-06", "00:00", "America/Santiago", "2026-09-06T04:00:00Z"],
+    // Samoa left out the whole of 30 December 2011.
+    ["2011-12-30", "05:00", "Pacific/Apia", "2011-12-30T10:00:00Z"],
+    ["2026-07-01", "06:00", "Europe/London", "2026-07-01T05:00:00Z"],
+  ])("%s %s in %s, or the next time there is", (date, time, timeZone, instant) => {
+    expect(atOrAfterLocalTime(date, time, timeZone)).toEqual(new Date(instant));
   });
 
   test("half-hour zones and zones without summer time", () => {

@@ -31,6 +31,18 @@ export function atLocalTime(date: string, time: string, timeZone: string): Local
   return second ? { kind: "twice", first, second } : { kind: "one", instant: first };
 }
 
+/**
+ * The first instant at which a wall clock in a zone shows a local date and time; where that time never comes, the next
+ * one that there is. Of a time that comes twice it is the first.
+ */
+export function atOrAfterLocalTime(date: string, time: string, timeZone: string): Date {
+  for (let minutes = 0; ; minutes += 1) {
+    const wanted = new Date(Date.parse(`${date}T${time}:00Z`) + minutes * 60_000).toISOString();
+    const at = atLocalTime(wanted.slice(0, 10), wanted.slice(11, 16), timeZone);
+    if (at.kind !== "skipped") return at.kind === "one" ? at.instant : at.first;
+  }
+}
+
 /** The local date in a zone at an instant, ISO. */
 export function localDate(instant: Date, timeZone: string): string {
   const local = new Date(instant.getTime() + tzOffset(timeZone, instant) * 60_000);

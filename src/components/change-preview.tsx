@@ -8,10 +8,10 @@ import { formatShortDate } from "../../shared/format/date";
 import { formatNumber } from "../../shared/format/number";
 import { startsSentence } from "../../shared/format/words";
 import {
-  ChangePreview,
+  type ChangePreview,
   RecomputeProgress as RecomputeProgressView,
 } from "../../shared/schemas/site";
-import { api } from "../lib/api";
+import { api, type ReplySchema } from "../lib/api";
 import { useLocale } from "../lib/i18n";
 import { Button } from "./button";
 import { DataTable } from "./data-table";
@@ -39,7 +39,8 @@ const WORDS: ReadonlySet<string> = new Set<ProtectorWord>([
   "enough",
 ]);
 
-function stateWord(i18n: I18n, state: string): string {
+/** A verdict, a word for a protector, or that there is none. */
+export function stateWord(i18n: I18n, state: string): string {
   if (VERDICTS.has(state)) return verdictWord(i18n, state as VerdictCode);
   if (WORDS.has(state)) return protectorWordText(i18n, state as ProtectorWord);
   return i18n.t("none");
@@ -60,12 +61,16 @@ const changeKey = ({ workerId, line, before, after }: Change) =>
   `${workerId} ${line} ${before} ${after}`;
 
 /** Asks who would change verdict, before a change is made. */
-export function useChangePreview(path: string, onError?: (error: unknown) => void) {
+export function useChangePreview<View>(
+  path: string,
+  schema: ReplySchema<View>,
+  onError?: (error: unknown) => void,
+) {
   const running = useRef<AbortController | null>(null);
   const preview = useMutation({
     mutationFn: (body: unknown) => {
       running.current = new AbortController();
-      return api.post(path, { body, schema: ChangePreview, signal: running.current.signal });
+      return api.post(path, { body, schema, signal: running.current.signal });
     },
     onError,
   });
@@ -79,6 +84,85 @@ export function useChangePreview(path: string, onError?: (error: unknown) => voi
       running.current?.abort();
     },
   };
+}
+
+/** Days on record that change verdict, by worker; the gravest first. */
+export function ChangesTable({
+  preview: { changes, changesCount },
+  workerPath,
+}: {
+  preview: Pick<z.infer<typeof ChangePreview>, "changes" | "changesCount">;
+  /** Address of a worker's day. */
+  workerPath: (workerId: string, date: string) => string;
+}) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const many = (count: number) => formatNumber(count, 0, locale);
+  return (
+    <>
+      <DataTable<Change>
+        caption={i18n.t("Who changes verdict")}
+        rows={changes}
+        rowKey={changeKey}
+        columns={[
+          {
+            id: "worker",
+            head: i18n.t("Worker"),
+            isRowHead: true,
+            sortValue: (row) => row.workerName,
+            cell: (row) => (
+              <TextLink to={workerPath(row.workerId, row.lastDate)}>{row.workerName}</TextLink>
+            ),
+          },
+          {
+            id: "line",
+            head: i18n.t("Judged"),
+            sortValue: (row) => row.line,
+            cell: (row) => lineWord(i18n, row.line),
+          },
+          {
+            id: "before",
+            head: i18n.t("Now"),
+            sortValue: (row) => row.before,
+            cell: (row) => stateWord(i18n, row.before),
+          },
+          {
+            id: "after",
+            head: i18n.t("Then"),
+            sortValue: (row) => row.after,
+            cell: (row) => <b>{stateWord(i18n, row.after)}</b>,
+          },
+          {
+            id: "days",
+            head: i18n.t("Days"),
+            kind: "figure",
+            sortValue: (row) => row.days,
+            cell: (row) => many(row.days),
+          },
+          {
+            id: "dates",
+            head: i18n.t("From, to"),
+            sortValue: (row) => row.lastDate,
+            cell: (row) =>
+              row.firstDate === row.lastDate
+                ? formatShortDate(row.lastDate, locale)
+                : i18n.t("{from} to {to}", {
+                    from: formatShortDate(row.firstDate, locale),
+                    to: formatShortDate(row.lastDate, locale),
+                  }),
+          },
+        ]}
+      />
+      {changesCount > changes.length && (
+        <p className="table-foot">
+          {i18n.t("{count} of {all} such changes are listed, the gravest first.", {
+            count: many(changes.length),
+            all: many(changesCount),
+          })}
+        </p>
+      )}
+    </>
+  );
 }
 
 /** What a change would do to verdicts, and the choice to make it. */
@@ -105,18 +189,8 @@ export function ChangeReview({
   const locale = useLocale();
   const head = useRef<HTMLHeadingElement>(null);
   useEffect(() => head.current?.focus(), []);
-  const {
-    days,
-    workers,
-    changes,
-    changesCount,
-    changedDays,
-    overDays,
-    cantTellDays,
-    tally,
-    people,
-    tooMany,
-  } = preview;
+  const { days, workers, changes, changedDays, overDays, cantTellDays, tally, people, tooMany } =
+    preview;
   const many = (count: number) => formatNumber(count, 0, locale);
   const isLowerBound = tooMany > 0;
   const changing =
@@ -190,67 +264,7 @@ export function ChangeReview({
           )}
           {actions}
           <h3 className="mt-7 mb-1">{i18n.t("Who changes verdict")}</h3>
-          <DataTable<Change>
-            caption={i18n.t("Who changes verdict")}
-            rows={changes}
-            rowKey={changeKey}
-            columns={[
-              {
-                id: "worker",
-                head: i18n.t("Worker"),
-                isRowHead: true,
-                sortValue: (row) => row.workerName,
-                cell: (row) => (
-                  <TextLink to={workerPath(row.workerId, row.lastDate)}>{row.workerName}</TextLink>
-                ),
-              },
-              {
-                id: "line",
-                head: i18n.t("Judged"),
-                sortValue: (row) => row.line,
-                cell: (row) => lineWord(i18n, row.line),
-              },
-              {
-                id: "before",
-                head: i18n.t("Now"),
-                sortValue: (row) => row.before,
-                cell: (row) => stateWord(i18n, row.before),
-              },
-              {
-                id: "after",
-                head: i18n.t("Then"),
-                sortValue: (row) => row.after,
-                cell: (row) => <b>{stateWord(i18n, row.after)}</b>,
-              },
-              {
-                id: "days",
-                head: i18n.t("Days"),
-                kind: "figure",
-                sortValue: (row) => row.days,
-                cell: (row) => many(row.days),
-              },
-              {
-                id: "dates",
-                head: i18n.t("From, to"),
-                sortValue: (row) => row.lastDate,
-                cell: (row) =>
-                  row.firstDate === row.lastDate
-                    ? formatShortDate(row.lastDate, locale)
-                    : i18n.t("{from} to {to}", {
-                        from: formatShortDate(row.firstDate, locale),
-                        to: formatShortDate(row.lastDate, locale),
-                      }),
-              },
-            ]}
-          />
-          {changesCount > changes.length && (
-            <p className="table-foot">
-              {i18n.t("{count} of {all} such changes are listed, the gravest first.", {
-                count: many(changes.length),
-                all: many(changesCount),
-              })}
-            </p>
-          )}
+          <ChangesTable preview={preview} workerPath={workerPath} />
         </>
       )}
       {changes.length === 0 && days === 0 && <Empty title={i18n.t("No day rests on this yet.")} />}

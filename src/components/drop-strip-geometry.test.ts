@@ -160,6 +160,13 @@ describe("active part", () => {
     expect(link?.toX).toBeLessThan(inner?.x ?? 0);
   });
 
+  test("where the part is credited, the ring says what it is with the part off", () => {
+    const { ring, inner, link } = draw({ atEarDb: 77, atEarOffDb: 86, atEarActiveDb: null });
+    expect(ring?.x).toBeCloseTo(levelX(86, 200));
+    expect(inner?.x).toBeCloseTo(levelX(77, 200));
+    expect(link).toBeNull();
+  });
+
   test("an active part that adds noise puts its ring right of the tick, without a line", () => {
     const { ring, inner, link } = draw({ atEarDb: 78.6, atEarActiveDb: 81.2 });
     expect(ring?.x).toBeGreaterThan(inner?.x ?? Infinity);

@@ -248,7 +248,7 @@ export function stripGeometry(facts: StripFacts, { widthPx, k }: StripSize): Str
     levelDb === null || isOffScale(levelDb) || facts.hasProtector !== "yes"
       ? null
       : { x: xOf(levelDb), y: BAR_INNER_Y * k, r: radius };
-  const ring = mark(facts.atEarActiveDb);
+  const ring = mark(facts.atEarOffDb ?? facts.atEarActiveDb);
   const asWorked = mark(facts.atEarAsWorkedDb);
   const dot = asWorked && { ...asWorked, r: 3 };
   const farthestX = Math.min(ring?.x ?? Infinity, dot?.x ?? Infinity);

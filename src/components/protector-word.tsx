@@ -2,23 +2,9 @@ import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import type { ReactNode } from "react";
 import type { ProtectorWord as WordCode } from "../../shared/acoustics/types";
+import { protectorWordText } from "../../shared/day/words";
 
-export function protectorWordText(i18n: I18n, word: WordCode): string {
-  switch (word) {
-    case "too-little":
-      return i18n.t("Too little");
-    case "just-enough":
-      return i18n.t("Just enough");
-    case "good":
-      return i18n.t("Good");
-    case "strong-side":
-      return i18n.t("On the strong side");
-    case "too-much":
-      return i18n.t("Too much");
-    case "enough":
-      return i18n.t("Enough");
-  }
-}
+export { protectorWordText };
 
 /** The standard's own word, where it differs from ours. */
 function standardWord(i18n: I18n, word: WordCode): string | null {

@@ -2,7 +2,7 @@ import { useLingui } from "@lingui/react";
 import { useMutation, useQueryClient } from "@tanstack/react-query";
 import { type ReactNode, useState } from "react";
 import type { z } from "zod";
-import type { ChangePreview } from "../../shared/schemas/site";
+import { ChangePreview } from "../../shared/schemas/site";
 import { ApiError, api, type ReplySchema } from "../lib/api";
 import { useChangeKey } from "../lib/change-key";
 import { useOneAtATime } from "../lib/one-at-a-time";
@@ -32,7 +32,7 @@ export function useReviewedChange<Body extends object, View>({
     body: Body;
     preview: z.infer<typeof ChangePreview>;
   } | null>(null);
-  const preview = useChangePreview(`${path}/preview`, onError);
+  const preview = useChangePreview(`${path}/preview`, ChangePreview, onError);
   const { begin, end } = useOneAtATime();
   const save = useMutation({
     mutationFn: (body: Body) =>

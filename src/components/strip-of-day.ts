@@ -47,7 +47,7 @@ export function stripOfDay(figures: DayFigures, frame: StripFrame): StripWords {
     atEarBound: figures.atEarBound,
     atEarUDb: figures.atEarBound === "exact" ? figures.uncertaintyDb : null,
     atEarOffDb: figures.atEarOffDb,
-    // The tick is then where the ring would be.
+    // The tick then has it on, and the ring stands where it is off.
     atEarActiveDb: figures.atEarOffDb === null ? figures.atEarActiveDb : null,
     atEarAsWorkedDb: figures.atEarAsWorkedDb,
     whileWornDb: figures.whileWornDb,

@@ -1,20 +1,9 @@
-import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import type { ReactNode } from "react";
 import type { Verdict as VerdictCode } from "../../shared/acoustics/types";
+import { verdictWord } from "../../shared/day/words";
 
-export function verdictWord(i18n: I18n, verdict: VerdictCode): string {
-  switch (verdict) {
-    case "under":
-      return i18n.t("Under");
-    case "over":
-      return i18n.t("Over");
-    case "cant-tell-yet":
-      return i18n.t("Can’t tell yet");
-    case "not-assessed":
-      return i18n.t("Not assessed");
-  }
-}
+export { verdictWord };
 
 /** The upright is the criterion; the mark stands under it, over it or across it. */
 export function VerdictShape({ verdict }: { verdict: VerdictCode }) {

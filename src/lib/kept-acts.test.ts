@@ -125,3 +125,29 @@ test("at sign-out one person's go, and another's stay", () => {
   expect(countUnsent(localStorage, first)).toBe(0);
   expect(countUnsent(localStorage, userId)).toBe(1);
 });
+
+test("what is taken back before it is sent is not sent", async () => {
+  const key = keep();
+  keptActsOf(userId).drop(key);
+  expect(countUnsent(localStorage, userId)).toBe(0);
+  answers = [session(userId)];
+  expect(await keptActsOf(userId).sendAll()).toEqual([]);
+});
+
+test("what is taken back while it is on its way is undone behind it", async () => {
+  const key = keep();
+  answers = [
+    session(userId),
+    { status: 200, body: { revision: 4 } },
+    { status: 200, body: { revision: 5 } },
+  ];
+  const acts = keptActsOf(userId);
+  const sending = acts.sendAll();
+  while (sent.length < 2) await Promise.resolve();
+  acts.drop(key);
+  expect(acts.list()).toEqual([]);
+  await sending;
+  expect(sent[2]?.headers.get("if-match")).toBe("4");
+  expect(JSON.parse(sent[2]?.body ?? "")).toEqual({ kind: "undo" });
+  expect(countUnsent(localStorage, userId)).toBe(0);
+});

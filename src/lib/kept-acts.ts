@@ -12,7 +12,7 @@ import { createKeptList, KEPT, type KeptList } from "./kept-list";
 /** What an act was, for whoever reads the list of what is not sent. */
 export type ActWords =
   | {
-      readonly kind: "mark-done" | "cannot" | "comment";
+      readonly kind: "mark-done" | "cannot" | "undo" | "comment";
       readonly findingId: string;
       readonly workerName: string;
       readonly text: string;
@@ -94,6 +94,18 @@ function standsNow(error: unknown): StandsNow | null {
 const isAlreadyDone = ({ words }: KeptAct, { state }: StandsNow) =>
   words.kind === "mark-done" && (state === "done" || state === "closed");
 
+const undoOf = ({ path, words }: KeptAct, { revision }: Reply): KeptAct => ({
+  key: newChangeKey(),
+  at: new Date().toISOString(),
+  path,
+  body: { kind: "undo" },
+  revision: revision ?? null,
+  words: words.kind === "round" ? words : { ...words, kind: "undo", text: "" },
+  state: "unsent",
+  stands: null,
+  code: null,
+});
+
 export interface KeptActs {
   /** Without those that are on their way at this moment. */
   list(): readonly KeptAct[];
@@ -101,6 +113,7 @@ export interface KeptActs {
   /** Keeps an act before it is sent for the first time; `release` says that its sender has done with it. */
   hold(act: NewAct): KeptAct;
   release(key: string, isToStay: boolean): void;
+  /** Taken back before it is sent; one that is on its way at this moment is undone behind it. */
   drop(key: string): void;
   /** Anew on what stands now, as another act. */
   again(key: string): void;
@@ -111,10 +124,12 @@ export interface KeptActs {
 function createKeptActs(kept: KeptList<KeptAct>, userId: string): KeptActs {
   const listeners = new Set<() => void>();
   const onTheirWay = new Set<string>();
+  const takenBack = new Set<string>();
+  let sendingKey: string | null = null;
   let shown: readonly KeptAct[] = kept.list();
   let isSending = false;
   function changed() {
-    shown = kept.list().filter(({ key }) => !onTheirWay.has(key));
+    shown = kept.list().filter(({ key }) => !onTheirWay.has(key) && !takenBack.has(key));
     for (const listener of listeners) listener();
   }
 
@@ -132,6 +147,7 @@ function createKeptActs(kept: KeptList<KeptAct>, userId: string): KeptActs {
       kept.remove(act.key);
       return { key: act.key, words: act.words, outcome };
     };
+    sendingKey = act.key;
     try {
       const reply = await api.post(act.path, {
         body: act.body,
@@ -140,14 +156,19 @@ function createKeptActs(kept: KeptList<KeptAct>, userId: string): KeptActs {
         schema: anyReply,
       });
       moveOn(act, reply);
+      if (takenBack.has(act.key)) kept.put(undoOf(act, reply));
       return settled("sent");
     } catch (error) {
+      if (takenBack.has(act.key)) kept.remove(act.key);
       if (!(error instanceof ApiError) || isUnreached(error)) throw error;
       if ([401, 429].includes(error.status) || error.code === "csrf") throw error;
       const stands = standsNow(error);
       if (stands && isAlreadyDone(act, stands)) return settled("already-done");
-      kept.put({ ...act, state: stands ? "conflict" : "refused", stands, code: error.code });
+      if (!takenBack.has(act.key))
+        kept.put({ ...act, state: stands ? "conflict" : "refused", stands, code: error.code });
       return null;
+    } finally {
+      sendingKey = null;
     }
   }
 
@@ -181,7 +202,8 @@ function createKeptActs(kept: KeptList<KeptAct>, userId: string): KeptActs {
       changed();
     },
     drop(key) {
-      kept.remove(key);
+      takenBack.add(key);
+      if (key !== sendingKey) kept.remove(key);
       changed();
     },
     again(key) {
@@ -207,10 +229,15 @@ function createKeptActs(kept: KeptList<KeptAct>, userId: string): KeptActs {
         if (!user) connectionEvents.tell("session-expired");
         // Somebody else may have signed in here in another window: what was done by one is not sent in another's name.
         if (user?.id !== userId) return [];
-        const keys = kept.list().map(({ key }) => key);
-        for (const key of keys) {
-          const act = kept.list().find((other) => other.key === key);
-          if (act?.state !== "unsent" || onTheirWay.has(key)) continue;
+        const tried = new Set<string>();
+        const next = () =>
+          kept
+            .list()
+            .find(
+              ({ key, state }) => state === "unsent" && !onTheirWay.has(key) && !tried.has(key),
+            );
+        for (let act = next(); act; act = next()) {
+          tried.add(act.key);
           const outcome = await send(act);
           if (outcome) settled.push(outcome);
         }

@@ -13,7 +13,7 @@ const PREFIX = "dinward.";
 const keyOf = (name: string, userId: string) => `${PREFIX}${name}.${userId}`;
 
 /** Names of the lists; the number goes up where what is in one changes its shape. */
-export const KEPT = { rounds: "wearing.1", acts: "acts.1", seen: "seen.1" } as const;
+export const KEPT = { rounds: "wearing.1", acts: "acts.1", seen: "seen.2" } as const;
 export type KeptName = (typeof KEPT)[keyof typeof KEPT];
 
 function readAll(storage: Storage, name: KeptName, userId: string): unknown[] {

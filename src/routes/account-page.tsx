@@ -4,6 +4,7 @@ import { Folio, PageBody, PageHead, Section } from "../components/page";
 import { accessQueries } from "../features/access/queries";
 import { ReadersTable } from "../features/access/readers-table";
 import { ReadsTable } from "../features/access/reads-table";
+import { DigestForm } from "../features/crew-sheet/digest-form";
 import { hasRole, useUser } from "../features/session/session";
 import { TokenForm } from "../features/tokens/token-form";
 import { TokensTable } from "../features/tokens/tokens-table";
@@ -46,6 +47,16 @@ export function Component() {
             of="account"
           />
         </Section>
+        {hasRole(user, "officer", "supervisor") && (
+          <Section title={i18n.t("Daily mail")} id="digest">
+            <p className="account-note">
+              {i18n.t(
+                "A mail on each day on which your crews work: who is expected, who is not in, and which orders are open.",
+              )}
+            </p>
+            <DigestForm />
+          </Section>
+        )}
         {hasRole(user, "officer", "supervisor", "worker", "auditor", "administrator") && (
           <Section title={i18n.t("Tokens for other systems")} id="tokens">
             <p className="account-note">

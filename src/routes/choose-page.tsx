@@ -29,6 +29,7 @@ import { useSiteChoice } from "./site-choice";
 import "../styles/candidates.css";
 import "../styles/choosing.css";
 import "../styles/findings.css";
+import "../styles/register.css";
 
 /** For a task or a job: the register in the order in which it suits the noise, and whom to give the chosen one. */
 export function Component() {
@@ -135,8 +136,17 @@ function Compared({ choice }: { choice: ProtectorChoiceView }) {
       inHead={i18n.t("In this order")}
       candidates={candidates}
       hasOwnFit={false}
+      activeCredit={{
+        siteCredits: choice.creditsActivePart,
+        checkedOf: (modelId) => ({
+          checked: choice.wearers.filter(({ checkedModelIds }) => checkedModelIds.includes(modelId))
+            .length,
+          all: choice.wearers.length,
+        }),
+      }}
       chosen={picked ? candidateKey(picked) : ""}
-      pickLabel={mayGive ? (protector) => i18n.t("Give {protector}", { protector }) : undefined}
+      pickWord={mayGive ? i18n.t("Give") : undefined}
+      pickLabel={(protector) => i18n.t("Give {protector}", { protector })}
       onPick={pick}
     />
   );

@@ -94,7 +94,7 @@ function CrewSheet({ crewId }: { crewId: string }) {
     const { timeZone, usualStart } = data.crew;
     const hasStarted = isToday && formatTime(now, timeZone) >= usualStart;
     const today = splitExpected(data.expected.rows);
-    const common = { crewId, frame, onStale: refresh };
+    const common = { crewId, timeZone, frame, onStale: refresh };
     expected = (
       <SheetFrame
         name="expected"
@@ -114,12 +114,26 @@ function CrewSheet({ crewId }: { crewId: string }) {
           <SheetRows {...common} part="expected" rows={today} />
         )}
         {hasRole(user, "supervisor", "officer") && (
-          <TextLink
-            className="sheet-more"
-            to={{ pathname: paths.wearingRound, search: `?crew=${crewId}` }}
-          >
-            {i18n.t("Wearing round: who wears it?")}
-          </TextLink>
+          <ul className="sheet-ways">
+            <li>
+              <TextLink
+                className="sheet-more"
+                to={{ pathname: paths.wearingRound, search: `?crew=${crewId}` }}
+              >
+                {i18n.t("Wearing round: who wears it?")}
+              </TextLink>
+            </li>
+            <li>
+              <TextLink className="sheet-more" to={paths.crewPeople(crewId)}>
+                {i18n.t("Not in and on loan")}
+              </TextLink>
+            </li>
+            <li>
+              <TextLink className="sheet-more" to={paths.handOvers(crewId)}>
+                {i18n.t("Hand-over")}
+              </TextLink>
+            </li>
+          </ul>
         )}
       </SheetFrame>
     );
@@ -163,6 +177,15 @@ function CrewSheet({ crewId }: { crewId: string }) {
               {i18n.t("As of {time}, no connection.", {
                 time: asOfText(asOf, now, data.crew.timeZone, locale),
               })}
+            </p>
+          )}
+          {data?.handOver && (
+            <p className="sheet-as-of">
+              <TextLink to={paths.handOvers(crewId)}>
+                {i18n.t("Handed to you by {name}", { name: data.handOver.byName })}
+              </TextLink>
+              {", "}
+              {asOfText(data.handOver.givenAt, now, data.crew.timeZone, locale)}
             </p>
           )}
           {sheet.isError && !data && <Failed error={sheet.error} onRetry={refresh} />}

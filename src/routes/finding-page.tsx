@@ -170,6 +170,7 @@ function Finding({ finding }: { finding: FindingView }) {
                   owners={followUp.data.owners}
                   today={todayAt(finding.siteId)}
                   canChange={finding.can.handle}
+                  tryPath={worker && paths.tryChangesFor("worker", worker.id)}
                 />
               ) : (
                 <FollowUpState query={followUp} />
@@ -177,7 +178,7 @@ function Finding({ finding }: { finding: FindingView }) {
             </Section>
             <Section title={i18n.t("The proof, measured")} id="proof">
               {followUp.data ? (
-                <ProofTable proof={followUp.data.proof} />
+                <ProofTable proof={followUp.data.proof} shown={finding.figures} />
               ) : (
                 <FollowUpState query={followUp} />
               )}
@@ -438,6 +439,8 @@ function stepWords(
       return i18n.t("Marked done");
     case "cannot":
       return i18n.t("Can’t, because");
+    case "undone":
+      return i18n.t("Undone");
     case "handed-over":
       return i18n.t("Handed over");
     case "escalated":

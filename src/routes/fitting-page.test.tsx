@@ -30,6 +30,8 @@ const candidate = (modelId: string, name: string, kind: string, more: object = {
   excludedBy: null,
   word: "good" as const,
   wornDb: 77.6,
+  wornActiveDb: null,
+  isActiveCredited: false,
   wornIn: "Chipping",
   scaleWord: null,
   scaleIn: null,
@@ -66,6 +68,7 @@ const desk = (overrides: Partial<FittingDesk> = {}): FittingDesk => ({
     reason: null,
   },
   policy: { confidencePct: 84, everyMonths: 12, afterFailDays: 14 },
+  creditsActivePart: false,
   candidates: [
     candidate(muff, "Fenmuff", "earmuff"),
     candidate(plug, "Alder foam", "foam-plug", { decidedBy: "margin" }),
@@ -97,6 +100,7 @@ const tested = (facts: FitTestView["facts"], more: Partial<FitTestView> = {}): F
   parDb: 18,
   hasPassed: true,
   activePassed: null,
+  labelLess7Db: null,
   outcome: "tried",
   dueOn: null,
   isVoid: false,
@@ -327,7 +331,12 @@ describe("the fitting desk", () => {
           lastFit: { parDb: 18, hasPassed: null, needDb: -2, testedOn: "2026-12-01" },
         }),
       ],
-      tests: [tested({ leftDb: [18], rightDb: [18], methodSdDb: 0, bands: null }, { needDb: 0 })],
+      tests: [
+        tested(
+          { leftDb: [18], rightDb: [18], methodSdDb: 0, bands: null },
+          { needDb: 0, labelLess7Db: 17 },
+        ),
+      ],
     });
     open(paths.fittingOf(worker));
     await screen.findByText("Nothing has to come off.");
@@ -341,6 +350,100 @@ describe("the fitting desk", () => {
       await screen.findByText(/Nothing has to come off, so there is nothing to pass\./),
     ).toBeTruthy();
     expect(screen.queryByText("Fits")).toBeNull();
+  });
+
+  test("an active device has both figures, and the reason says which one it is judged by", async () => {
+    const active = (more: object) =>
+      candidate(muff, "Tern active", "active-earmuff", {
+        wornDb: 88.1,
+        wornActiveDb: 79.4,
+        ...more,
+      });
+    const option = () =>
+      within(screen.getByLabelText("Device")).getByRole("option", { name: /Tern active/ });
+    at = desk({
+      creditsActivePart: true,
+      candidates: [active({ word: "good", isActiveCredited: true })],
+    });
+    const credited = open(paths.fittingOf(worker));
+    await screen.findByText(/judged with the active part on: its check is passed$/);
+    expect(screen.getByText("Chipping 88.1, with the active part on 79.4")).toBeVisible();
+    expect(option()).toHaveTextContent("1. Tern active, Good, 79.4 at the ear");
+    credited.unmount();
+
+    at = desk({ creditsActivePart: true, candidates: [active({ word: "too-little" })] });
+    const unchecked = open(paths.fittingOf(worker));
+    await screen.findByText(/judged with the active part off: no passed check on record$/);
+    expect(option()).toHaveTextContent("1. Tern active, Too little, 88.1 at the ear");
+    unchecked.unmount();
+
+    at = desk({ candidates: [active({ word: "too-little" })] });
+    open(paths.fittingOf(worker));
+    await screen.findByText(/judged with the active part off: no credit at this site$/);
+  });
+
+  test("under Appendix B the shift’s word stands with the shift’s level, not a task’s", async () => {
+    at = desk({
+      ruleSetKey: "us-general-industry",
+      candidates: [
+        candidate(muff, "Fenmuff", "earmuff", { word: "enough", wornDb: 96.4, twaDb: 75.9 }),
+      ],
+    });
+    open(paths.fittingOf(worker));
+    const device = await screen.findByLabelText("Device");
+    expect(within(device).getByRole("option")).toHaveTextContent(
+      "1. Fenmuff, Enough, 75.9 at the ear",
+    );
+    expect(screen.getByText("Chipping 96.4, shift 75.9")).toBeVisible();
+  });
+
+  test("one kind only, or none left, is said before anything is sent", async () => {
+    const user = userEvent.setup();
+    at = desk({
+      candidates: [
+        candidate(muff, "Fenmuff", "earmuff"),
+        candidate(plug, "Alder foam", "foam-plug", { stock: 0 }),
+      ],
+      tests: [tested({ leftDb: [24], rightDb: [], methodSdDb: 3, bands: null })],
+    });
+    open(paths.fittingOf(worker));
+    await user.click(await screen.findByRole("button", { name: "Issue Fenmuff" }));
+    const issue = await screen.findByRole("form", { name: "Issue Fenmuff" });
+    await user.click(within(issue).getByRole("button", { name: "Issue this" }));
+    expect(await within(issue).findByText(/Only one kind was on offer/)).toBeVisible();
+    expect(within(issue).getByLabelText("All the same, because")).toHaveFocus();
+    expect(sent).toEqual([]);
+    // With another on offer nothing is asked, and it goes.
+    await user.click(within(issue).getByLabelText("Alder foam"));
+    await user.click(within(issue).getByRole("button", { name: "Issue this" }));
+    await waitFor(() => expect(sent).toHaveLength(1));
+    expect(sent[0]?.body.reason).toBeNull();
+  }, 30_000);
+
+  test("what is out with the worker says issued, and another one is offered", async () => {
+    at = desk({
+      tests: [
+        tested(
+          { leftDb: [24], rightDb: [], methodSdDb: 3, bands: null },
+          { outcome: "issued", size: "M" },
+        ),
+      ],
+      issued: [
+        {
+          id: id(8),
+          revision: 1,
+          modelId: muff,
+          modelName: "Fenmuff",
+          size: "M",
+          issuedOn: "2026-11-20",
+          isAcknowledged: true,
+        },
+      ],
+    });
+    open(paths.fittingOf(worker));
+    expect(await screen.findByRole("button", { name: "Issue another Fenmuff" })).toBeVisible();
+    expect(screen.getByText("issued")).toBeVisible();
+    expect(screen.queryByRole("button", { name: "Issue Fenmuff" })).toBeNull();
   });
 
   test("a trial that is no number is named at its ear, and nothing is rated or sent meanwhile", async () => {

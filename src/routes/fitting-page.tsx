@@ -5,7 +5,7 @@ import { useNavigate, useParams } from "react-router-dom";
 import { hasToPass } from "../../shared/acoustics/protection/fit-rating";
 import { formatLevel, formatLimit } from "../../shared/format/level";
 import { ruleSetVersion } from "../../shared/rule-sets";
-import type { FittingDesk } from "../../shared/schemas/fit";
+import type { FitTestView, FittingDesk } from "../../shared/schemas/fit";
 import { localDate } from "../../shared/time/zone";
 import { Button, ButtonLink } from "../components/button";
 import { Empty } from "../components/empty";
@@ -105,6 +105,11 @@ function AtDesk({
   const form = useRef<FitFormHandle>(null);
   const issueAt = useRef<HTMLDivElement>(null);
   const [chosenId, setChosenId] = useState(desk.candidates[0]?.modelId ?? "");
+  const isOut = ({ modelId, size }: FitTestView) =>
+    desk.issued.some(
+      (one) => one.modelId === modelId && (one.size === null || size === null || one.size === size),
+    );
+  const activeCredit = { siteCredits: desk.creditsActivePart, checkedOf: () => null };
   const [toIssue, setToIssue] = useState<ToIssue | null>(null);
   const protectors = useQuery(references.protectors());
   const issues = useInfiniteQuery(fitQueries.issues({ workerId: worker.id, state: "open" }));
@@ -167,7 +172,9 @@ function AtDesk({
             caption={i18n.t("Devices in the order in which they suit this noise")}
             inHead={i18n.t("To be tried")}
             candidates={desk.candidates}
+            activeCredit={activeCredit}
             chosen={chosenId}
+            pickWord={i18n.t("Try")}
             pickLabel={(protector) => i18n.t("Try {protector}", { protector })}
             onPick={({ modelId }) => form.current?.choose(modelId)}
           />
@@ -180,13 +187,11 @@ function AtDesk({
                 caption={i18n.t("Two together, in the order in which they suit this noise")}
                 inHead={i18n.t("A plug under a muff")}
                 candidates={desk.pairs}
+                activeCredit={activeCredit}
                 chosen=""
                 hasOwnFit={false}
-                pickLabel={
-                  can.issue
-                    ? (pair) => i18n.t("Assign {protector}", { protector: pair })
-                    : undefined
-                }
+                pickWord={can.issue ? i18n.t("Assign") : undefined}
+                pickLabel={(pair) => i18n.t("Assign {protector}", { protector: pair })}
                 onPick={({ modelId, outerModelId }) =>
                   void navigate(
                     paths.assign(worker.id, {
@@ -252,9 +257,6 @@ function AtDesk({
         <FitTestsTable
           hidesWorker
           rows={desk.tests}
-          labelLess7Of={(modelId) =>
-            desk.candidates.find((one) => one.modelId === modelId)?.labelLess7Db ?? null
-          }
           isSelected={({ id }) => id === toIssue?.fit?.id}
           actions={
             can.issue
@@ -262,10 +264,14 @@ function AtDesk({
                   !fit.isVoid &&
                   fit.parDb !== null && (
                     <TextButton
-                      aria-label={i18n.t("Issue {protector}", { protector: fit.modelName })}
+                      aria-label={
+                        isOut(fit)
+                          ? i18n.t("Issue another {protector}", { protector: fit.modelName })
+                          : i18n.t("Issue {protector}", { protector: fit.modelName })
+                      }
                       onClick={() => setToIssue({ modelId: fit.modelId, size: fit.size, fit })}
                     >
-                      {i18n.t("Issue this")}
+                      {isOut(fit) ? i18n.t("Issue another") : i18n.t("Issue this")}
                     </TextButton>
                   )
               : undefined

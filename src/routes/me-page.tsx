@@ -116,7 +116,7 @@ function OwnPage({ workerId }: { workerId: string }) {
           )}
         </Section>
         <Section title={i18n.t("My last shift")} id="my-last-shift">
-          {part(<LastShift day={lastDay} workerId={workerId} today={today} />)}
+          {part(<LastShift day={lastDay} workerId={workerId} askedFor={askedFor} today={today} />)}
         </Section>
         <Section title={i18n.t("My year at the ear")} id="my-year">
           <Suspense fallback={<PartLoading />}>
@@ -124,6 +124,15 @@ function OwnPage({ workerId }: { workerId: string }) {
               <MyHistory days={days.data ?? []} assignments={worker.data?.assignments ?? []} />,
             )}
           </Suspense>
+          <p>
+            <a
+              className="link me-list-link"
+              href={`/api/workers/${workerId}/exposure-record.pdf`}
+              download
+            >
+              {i18n.t("My whole record to print (PDF)")}
+            </a>
+          </p>
         </Section>
         <Section title={i18n.t("My training")} id="my-training">
           <WorkerTrainings workerId={workerId} today={today} />

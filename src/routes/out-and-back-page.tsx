@@ -4,6 +4,7 @@ import { useRef, useState } from "react";
 import { useSearchParams } from "react-router-dom";
 import { z } from "zod";
 import { formatDay } from "../../shared/format/date";
+import { startsSentence } from "../../shared/format/words";
 import { IsoDate } from "../../shared/schemas/common";
 import { localDate } from "../../shared/time/zone";
 import { ButtonLink } from "../components/button";
@@ -113,7 +114,7 @@ export function Component() {
           lead={
             board.data && (
               <>
-                {formatDay(date, locale)}.{" "}
+                {startsSentence(formatDay(date, locale), locale)}.{" "}
                 <b>
                   {i18n.t(
                     "{count, plural, =0 {No instrument is out.} one {# instrument is out.} other {# instruments are out.}}",

@@ -13,6 +13,16 @@ export const peopleRoutes: PageRoute[] = [
     roles: ["supervisor", "officer", "auditor"],
   },
   {
+    path: paths.crewPeople(":crewId"),
+    lazy: () => import("./crew-people-page"),
+    roles: ["supervisor", "officer"],
+  },
+  {
+    path: paths.handOvers(":crewId"),
+    lazy: () => import("./hand-over-page"),
+    roles: ["supervisor", "officer", "auditor"],
+  },
+  {
     path: paths.yearFile,
     lazy: () => import("./year-file-page"),
     roles: ["auditor", "officer", "visitor"],

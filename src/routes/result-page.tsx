@@ -227,7 +227,7 @@ function ResultStrip({ result: { figures, wearingSeen } }: { result: ResultView 
         {figures.atEarOffDb !== null && (
           <span>
             {i18n.t(
-              "{level} with the active part off: the site credits it, and its check was passed",
+              "○ {level} with the active part off: the site credits it, and its check was passed",
               {
                 level: level(figures.atEarOffDb),
               },

@@ -1,13 +1,13 @@
 import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
-import { lazy, Suspense, useState } from "react";
-import { Outlet } from "react-router-dom";
+import { lazy, Suspense, useLayoutEffect, useState } from "react";
+import { NavigationType, Outlet, useLocation, useNavigationType } from "react-router-dom";
 import { isolate } from "../../shared/i18n/isolate";
 import type { SessionRole, SessionUser } from "../../shared/schemas/session";
 import { ConnectionBanner } from "../components/connection-banner";
 import { HeadPlace } from "../components/in-head";
 import { type NavItem, Page, RunningHead } from "../components/page";
-import { AccountActions } from "../features/session/account-actions";
+import { AccountActions, OwnLanguage } from "../features/session/account-actions";
 import { hasRole, useUser } from "../features/session/session";
 import { TypedBy } from "../lib/keep-typed";
 import { useIsPhone } from "../lib/use-is-phone";
@@ -81,17 +81,29 @@ function SearchBoxFrame() {
   );
 }
 
+/** A page that is gone on to starts at its head; going back, the browser finds the place again. */
+function useStartAtHead(): void {
+  const { pathname, hash } = useLocation();
+  const isBack = useNavigationType() === NavigationType.Pop;
+  // biome-ignore lint/correctness/useExhaustiveDependencies: what is searched or opened on a page moves nothing
+  useLayoutEffect(() => {
+    if (!isBack && hash === "" && window.scrollY > 0) window.scrollTo(0, 0);
+  }, [pathname]);
+}
+
 /** Frame of every page behind the sign-in. A worker's page and the Crew sheet bring words of their own. */
 export function SignedIn() {
   const { i18n } = useLingui();
   const user = useUser();
+  useStartAtHead();
   const items = useNavigation(user);
   const isPlain = items.length <= 1;
-  // On the Crew sheet one line says whose it is and the time; a phone has the account at the foot of the page instead.
+  // On the Crew sheet one line says whose it is and the time.
   const isSheet = isPlain && hasRole(user, "supervisor");
   const [place, setPlace] = useState<HTMLElement | null>(null);
   const isPhone = useIsPhone();
-  const isAccountAtFoot = isSheet && isPhone;
+  // A phone has room in the head for the languages at the most: the way out stands at the foot of the page.
+  const isAccountAtFoot = isPlain && isPhone;
   const whoAndWhat = `${isolate(user.name)}, ${roleWord(i18n, user.roles)}`;
   return (
     <Page
@@ -103,7 +115,11 @@ export function SignedIn() {
             title={hasRole(user, "worker") && isPlain ? user.name : "Dinward"}
             place={isSheet ? setPlace : undefined}
             account={
-              isAccountAtFoot ? undefined : (
+              isAccountAtFoot ? (
+                isSheet ? undefined : (
+                  <OwnLanguage />
+                )
+              ) : (
                 <>
                   {hasRole(user, "officer", "auditor") && (
                     <Suspense fallback={<SearchBoxFrame />}>
@@ -113,7 +129,10 @@ export function SignedIn() {
                   {!isPlain && <span className="account-site">{placeText(i18n, user)}</span>}
                   {isPlain && !hasRole(user, "worker") && <b>{user.name}</b>}
                   {isPlain ? (
-                    <AccountActions />
+                    <>
+                      <OwnLanguage />
+                      <AccountActions />
+                    </>
                   ) : (
                     <Suspense fallback={<b>{whoAndWhat}</b>}>
                       <AccountMenu>{whoAndWhat}</AccountMenu>
@@ -139,6 +158,7 @@ export function SignedIn() {
       {isAccountAtFoot && (
         <div className="foot-account">
           <b>{user.name}</b>
+          {isSheet && <OwnLanguage />}
           <AccountActions />
         </div>
       )}

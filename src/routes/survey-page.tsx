@@ -15,6 +15,7 @@ import { surveyQueries } from "../features/surveys/queries";
 import { StateActions } from "../features/surveys/state-actions";
 import { ResultsTable, SamplesTable } from "../features/surveys/survey-tables";
 import { riskFactorTitle, stateTitle, strategyTitle } from "../features/surveys/survey-words";
+import { apiAddress } from "../lib/api";
 import { useLocale } from "../lib/i18n";
 import { paths } from "../paths";
 import { MeasuringWays } from "./measuring-frame";
@@ -75,6 +76,9 @@ export function Component() {
                 <ButtonLink to={paths.changeSurvey(id)}>{i18n.t("Change the plan")}</ButtonLink>
               )}
               <ButtonLink to={paths.fieldSheet(id)}>{i18n.t("Field sheet")}</ButtonLink>
+              <a className="link" href={apiAddress(`/surveys/${id}/report.pdf`)} download>
+                {i18n.t("Survey report (PDF)")}
+              </a>
             </>
           }
         />

@@ -13,7 +13,7 @@ import {
   formatWeekday,
   localDateOf,
 } from "../../shared/format/date";
-import { withinSentence } from "../../shared/format/words";
+import { startsSentence, withinSentence } from "../../shared/format/words";
 import { actionValueDb, mainLimit, ruleSetVersion } from "../../shared/rule-sets";
 import type { FindingRow } from "../../shared/schemas/finding";
 import type { SessionUser } from "../../shared/schemas/session";
@@ -95,7 +95,7 @@ export function Component() {
           lead={
             data ? (
               <>
-                {formatDay(data.today, locale)}.{" "}
+                {startsSentence(formatDay(data.today, locale), locale)}.{" "}
                 <b>
                   {i18n.t(
                     "{count, plural, =0 {Nothing needs a person.} one {One thing needs a person,} other {# things need a person,}}",

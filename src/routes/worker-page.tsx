@@ -44,6 +44,7 @@ import { WorkerTrainings } from "../features/training/worker-training";
 import { workerQueries } from "../features/workers/queries";
 import { SignInSlip } from "../features/workers/sign-in-slip";
 import { employerWords } from "../features/workers/workers-table";
+import { apiAddress } from "../lib/api";
 import { useLocale } from "../lib/i18n";
 import { gearWords } from "../lib/register-words";
 import { paths } from "../paths";
@@ -147,9 +148,20 @@ function WorkerSheet({ worker }: { worker: WorkerView }) {
                   .join(", ")
           }
           actions={
-            worker.can.change && (
-              <ButtonLink to={paths.changeWorker(worker.id)}>{i18n.t("Change")}</ButtonLink>
-            )
+            <>
+              {hasRole(user, "officer", "auditor") && (
+                <a
+                  className="link"
+                  href={apiAddress(`/workers/${worker.id}/exposure-record.pdf`)}
+                  download
+                >
+                  {i18n.t("Exposure record (PDF)")}
+                </a>
+              )}
+              {worker.can.change && (
+                <ButtonLink to={paths.changeWorker(worker.id)}>{i18n.t("Change")}</ButtonLink>
+              )}
+            </>
           }
         />
         <div className="beside-slip">

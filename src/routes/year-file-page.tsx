@@ -22,10 +22,12 @@ import { MonthsList } from "../features/year-file/months-list";
 import { MonthsTable } from "../features/year-file/months-table";
 import {
   downloadRecords,
+  downloadWorkbook,
   downloadYear,
   WORKERS_AS,
   yearFileQueries,
 } from "../features/year-file/queries";
+import { ReportsSection } from "../features/year-file/reports-section";
 import { useLocale } from "../lib/i18n";
 import { useIsPhone } from "../lib/use-is-phone";
 import { paths } from "../paths";
@@ -119,7 +121,7 @@ function YearFile({
   };
 
   /** A browser saves an error under the file's name: so it is asked first whether the server would answer. */
-  async function download(kind: "csv" | "zip") {
+  async function download(kind: "csv" | "zip" | "xlsx") {
     setIsAsking(true);
     setError(null);
     const { error: refused } = await gaps.refetch();
@@ -131,6 +133,9 @@ function YearFile({
     if (kind === "zip") {
       downloadRecords(yearOfSite, workers);
       setSaid(i18n.t("The browser is taking the ZIP. You may leave this page."));
+    } else if (kind === "xlsx") {
+      downloadWorkbook(yearOfSite, workers);
+      setSaid(i18n.t("The browser is taking the workbook. You may leave this page."));
     } else {
       downloadYear(yearOfSite, workers, locale);
       setSaid(i18n.t("The browser is taking both files. You may leave this page."));
@@ -191,6 +196,13 @@ function YearFile({
             timeZone={site.timeZone}
           />
         )}
+        {hasRole(user, "auditor", "officer") && gaps.data && gaps.data.months.length > 0 && (
+          <ReportsSection
+            key={`reports ${site.id} ${year}`}
+            year={yearOfSite}
+            timeZone={site.timeZone}
+          />
+        )}
         <div className="filter-row year-choice">
           <FilterSelect
             label={i18n.t("Year")}
@@ -214,12 +226,17 @@ function YearFile({
             ]}
             onChange={(value) => choose("workers", value)}
           />
-          <Button isBusy={isAsking} onClick={() => void download("zip")}>
-            {i18n.t("All records: ZIP that checks itself")}
-          </Button>
-          <Button kind="primary" isBusy={isAsking} onClick={() => void download("csv")}>
-            {i18n.t("Year file: CSV and dictionary")}
-          </Button>
+          <div className="year-takes">
+            <Button isBusy={isAsking} onClick={() => void download("xlsx")}>
+              {i18n.t("All records: workbook (XLSX)")}
+            </Button>
+            <Button isBusy={isAsking} onClick={() => void download("zip")}>
+              {i18n.t("All records: ZIP that checks itself")}
+            </Button>
+            <Button kind="primary" isBusy={isAsking} onClick={() => void download("csv")}>
+              {i18n.t("Year file: CSV and dictionary")}
+            </Button>
+          </div>
         </div>
         {error !== null && <Failed error={error} onRetry={() => void gaps.refetch()} />}
         <p className="year-said">

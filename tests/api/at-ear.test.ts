@@ -110,6 +110,25 @@ test("a worker's own fit widens the spread; a supervisor of another crew doesn't
   expect((await other.get(path)).status).toBe(404);
 });
 
+test("where Appendix B governs, the label's rating less 7 stands beside a worker's own fit", async () => {
+  for (const [governingRuleSet, less7] of [
+    ["us-general-industry", 16],
+    ["uk-2005", null],
+  ] as const) {
+    const site = await buildSite({ governingRuleSet });
+    const worker = await buildWorker({ site });
+    const model = await buildProtector({ organizationId: site.organizationId });
+    await buildAssignment({ worker, inner: model });
+    await buildFitTest({ worker, model, parDb: 12 });
+    const task = await buildNoise(site);
+    const { body } = await (await officerAt(site)).get(
+      `/protectors/${model.id}/at-ear?taskId=${task.id}&workerId=${worker.id}`,
+    );
+    // 29 CFR 1910.95 App. B (ii): 23 − 7.
+    expect(body.worker).toMatchObject({ ownFitDb: 12, labelLess7Db: less7 });
+  }
+});
+
 test("how loud a programme may be over the nominal day, before the day at the ear passes the limit", async () => {
   const site = await buildSite({ governingRuleSet: "uk-2005" });
   const model = await buildProtector({ organizationId: site.organizationId });

@@ -2,6 +2,7 @@ import { describe, expect, test } from "vitest";
 import { closeFitDues, openFitDues } from "../../server/commands/follow-fits";
 import { recomputeStaleDays } from "../../server/jobs/recompute-stale-days";
 import { inTransaction } from "../../server/lib/db";
+import type { Candidate } from "../../shared/schemas/fit";
 import {
   buildAssignment,
   buildFitTest,
@@ -247,12 +248,10 @@ describeEndpoint({
   call: async (site) => ({ method: "get", path: `/sites/${site.id}/fits` }),
 });
 
-interface Desk {
+interface Desk extends Awaited<ReturnType<typeof models>> {
   site: Site;
   worker: Worker;
   client: Client;
-  muff: { id: string };
-  plug: { id: string };
 }
 
 async function openDesk(): Promise<Desk> {
@@ -347,7 +346,128 @@ describe("the fitting desk", () => {
   });
 });
 
+describe("an active muff at the desk and among what is chosen from", () => {
+  const flat = (db: number) => [db, db, db, db, db, db, db, db];
+
+  /** Its label leaves 88 of 100 dB(A); the active part takes 10 dB off in every band. */
+  async function openActive(creditsActivePart: boolean) {
+    const site = await buildSite({ creditsActivePart });
+    const task = await buildTask({ site, name: "Run-up", levelDb: 100, octaveBandsDb: flat(93) });
+    const job = await buildJob({ site, tasks: [{ taskId: task.id, durationMin: 480 }] });
+    const worker = await buildWorker({ site, jobId: job.id });
+    const { organizationId } = site;
+    const active = await buildProtector({
+      organizationId,
+      name: "Tern active",
+      kind: "active-earmuff",
+      data: {
+        snrDb: null,
+        usRatingDb: null,
+        bands: { meanDb: flat(16), sdDb: flat(4) },
+        active: {
+          attenuationDb: flat(10),
+          delayS: null,
+          gain: null,
+          maximumDb: null,
+          bandwidthHz: null,
+          saturatesAboveDb: null,
+          batteryMin: null,
+        },
+      } as object,
+    });
+    await buildAssignment({ worker, inner: active });
+    const client = await signInAs(await buildUser({ organizationId, roles: ["officer"] }));
+    const desk = async () =>
+      (await client.get(`/workers/${worker.id}/fitting`)).body.candidates[0] as Candidate;
+    const choice = async () =>
+      (await client.get(`/protector-choice?jobId=${job.id}`)).body.singles[0] as Candidate;
+    const word = async () => {
+      const date = daysFromToday(-1);
+      await buildShift(worker, { date, tasks: [{ taskId: task.id, durationMin: 480 }] });
+      await insert("days", { organizationId, siteId: site.id, workerId: worker.id, date });
+      await recomputeStaleDays(organizationId);
+      return (
+        await select<{ word: string }>(
+          "SELECT word FROM day_results WHERE worker_id = $1 ORDER BY computed_at DESC",
+          [worker.id],
+        )
+      )[0]?.word;
+    };
+    return { site, job, worker, active, desk, choice, word };
+  }
+
+  test("is judged as the day is: with the part on where the site credits it and its check has passed", async () => {
+    const { site, job, worker, active, desk, choice, word } = await openActive(true);
+    const off = { word: "too-little", isActiveCredited: false };
+    expect(await desk()).toMatchObject(off);
+    expect(await choice()).toMatchObject(off);
+    await buildFitTest({ worker, model: active, parDb: null, activePassed: true });
+    const on = { word: "good", isActiveCredited: true };
+    for (const found of [await desk(), await choice()]) {
+      expect(found).toMatchObject(on);
+      expect(found.wornDb).toBeCloseTo(88, 0);
+      expect(found.wornActiveDb).toBeCloseTo(found.wornDb! - 10, 6);
+    }
+    expect(await word()).toBe("good");
+    // For a group it has to have passed on all of them.
+    await buildWorker({ site, jobId: job.id });
+    expect(await choice()).toMatchObject(off);
+    expect(await desk()).toMatchObject(on);
+    // The latest check counts.
+    await buildFitTest({
+      worker,
+      model: active,
+      parDb: null,
+      activePassed: false,
+      testedOn: today,
+    });
+    expect(await desk()).toMatchObject(off);
+  });
+
+  test("no credit at the site: the part off, whatever has passed", async () => {
+    const { worker, active, desk, choice, word } = await openActive(false);
+    await buildFitTest({ worker, model: active, parDb: null, activePassed: true });
+    for (const found of [await desk(), await choice()])
+      expect(found).toMatchObject({ word: "too-little", isActiveCredited: false });
+    expect(await word()).toBe("too-little");
+  });
+});
+
 describe("a fit test", () => {
+  test("where Appendix B governs, the label's rating less 7 stands beside it", async () => {
+    for (const [governingRuleSet, less7] of [
+      ["us-general-industry", 16],
+      ["eu-2003-10-ec", null],
+    ] as const) {
+      const site = await buildSite({ governingRuleSet });
+      const { worker } = await buildFitTest({ worker: await buildWorker({ site }) });
+      const { organizationId } = site;
+      const client = await signInAs(await buildUser({ organizationId, roles: ["officer"] }));
+      const [listed] = (await client.get(`/fit-tests?workerId=${worker.id}`)).body.rows;
+      // 29 CFR 1910.95 App. B (ii): 23 − 7.
+      expect(listed.labelLess7Db).toBe(less7);
+    }
+  });
+
+  test("of a device that is out with the worker says issued; of another size or once brought back, tried", async () => {
+    const desk = await openDesk();
+    const { worker, client } = desk;
+    const out = await buildIssue({ worker, model: desk.muff });
+    const outcome = async () =>
+      (await client.get(`/fit-tests?workerId=${worker.id}`)).body.rows.map(
+        (row: { outcome: string }) => row.outcome,
+      );
+    await buildFitTest({ worker, model: desk.muff });
+    expect(await outcome()).toEqual(["issued"]);
+    await select("UPDATE protector_issues SET size = 'M' WHERE id = $1", [out.id]);
+    await buildFitTest({ worker, model: desk.muff, size: "L", testedOn: today });
+    expect(await outcome()).toEqual(["tried", "issued"]);
+    const end = { endedOn: today, how: "returned" };
+    const path = `/issues/${out.id}/end`;
+    expect((await client.send({ method: "post", path, body: end, revision: 1 })).status).toBe(201);
+    expect(await outcome()).toEqual(["tried", "tried"]);
+  });
+
   test("gives the PAR of the weaker ear, tried until it is issued", async () => {
     const desk = await openDesk();
     const { body, status } = await record(desk, fitBody(desk.muff.id));

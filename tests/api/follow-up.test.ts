@@ -257,7 +257,7 @@ describe("measures and their proof", () => {
       governingRuleSet: "us-general-industry",
     });
     await buildDay(worker, daysFromToday(-10), { ...measured, outsideDb: 50 });
-    await buildDay(worker, daysFromToday(-5), { ...measured, outsideDb: 86 });
+    await buildDay(worker, daysFromToday(-5), { ...measured, outsideDb: 86, atEarDb: 71.2 });
     const id = await buildFinding({
       site,
       workerId: worker.id,
@@ -281,7 +281,7 @@ describe("measures and their proof", () => {
     expect(proof).toMatchObject({
       doneOn: daysFromToday(-10),
       before: { days: 3, medianOutsideDb: 97, lowestOutsideDb: 96, highestOutsideDb: 98 },
-      after: { days: 1, medianOutsideDb: 86 },
+      after: { days: 1, medianOutsideDb: 86, lowestAtEarDb: 71.2, highestAtEarDb: 71.2 },
     });
     expect(proof.after.latest).toMatchObject([{ outsideDb: 86, worker: { id: worker.id } }]);
   });

@@ -1,5 +1,5 @@
 import { expect, test } from "vitest";
-import type { IssueSlip, ProtectorChoiceView } from "../../shared/schemas/choice";
+import type { GivingPreview, IssueSlip, ProtectorChoiceView } from "../../shared/schemas/choice";
 import {
   buildAssignment,
   buildCrew,
@@ -43,6 +43,84 @@ describeEndpoint({
     method: "get",
     path: `/issue-slips?workerIds=${(await buildWorker({ site })).id}`,
   }),
+});
+
+describeEndpoint({
+  route: "POST /assignments/many/preview",
+  as: "officer",
+  not: "auditor",
+  event: null,
+  status: 200,
+  bad: { body: { workerIds: [] } },
+  badField: "workerIds",
+  call: async (site) => ({
+    method: "post",
+    path: "/assignments/many/preview",
+    body: {
+      workerIds: [(await buildWorker({ site })).id],
+      assignment: {
+        innerModelId: (await buildProtector({ organizationId: site.organizationId })).id,
+        fromDate: "2026-01-01",
+      },
+    },
+  }),
+});
+
+test("before a group is given a protector: whose usual day changes verdict, and whether the stock goes round", async () => {
+  const site = await buildSite();
+  const { organizationId } = site;
+  const task = await buildTask({ site, levelDb: 98, octaveBandsDb: at1kHz(98) });
+  const job = await buildJob({ site, tasks: [{ taskId: task.id, durationMin: 480 }] });
+  const bySnr = (snrDb: number) =>
+    buildProtector({ organizationId, data: { snrDb, usRatingDb: null } });
+  const [weak, good] = [await bySnr(5), await bySnr(20)];
+  const bare = await buildWorker({ site, jobId: job.id, name: "Ada" });
+  const weakly = await buildWorker({ site, jobId: job.id, name: "Ben" });
+  const holder = await buildWorker({ site, jobId: job.id, name: "Cem" });
+  const idle = await buildWorker({ site, name: "Dora" });
+  await buildAssignment({ worker: weakly, inner: weak });
+  await buildAssignment({ worker: holder, inner: good });
+  const client = await officerAt(site);
+  const entered = await client.post("/stock/moves", {
+    siteId: site.id,
+    modelId: good.id,
+    kind: "received",
+    part: "device",
+    size: null,
+    quantity: 2,
+    movedOn: "2026-01-05",
+    note: "",
+  });
+  expect(entered.status).toBe(201);
+  const today = new Date().toISOString().slice(0, 10);
+  const ask = (modelId: string) =>
+    client.post("/assignments/many/preview", {
+      workerIds: [bare.id, weakly.id, holder.id, idle.id],
+      assignment: { innerModelId: modelId, fromDate: today },
+    });
+  const { status, body } = await ask(good.id);
+  expect(status).toBe(200);
+  expect(body.daysCount).toBe(3);
+  expect(body.withoutDayCount).toBe(1);
+  expect(
+    body.changes.map((row: GivingPreview["changes"][number]) => [
+      row.workerName,
+      row.before.word,
+      row.after.word,
+    ]),
+  ).toEqual([
+    ["Ada", null, "good"],
+    ["Ben", "too-little", "good"],
+  ]);
+  expect(body.stock).toMatchObject([{ modelId: good.id, neededCount: 3, stockCount: 2 }]);
+
+  // The other way round: whoever would fall to too little, and nothing is stored by the look.
+  const worse = await ask(weak.id);
+  expect(worse.body.changes[0]).toMatchObject({ after: { word: "too-little" } });
+  expect(worse.body.stock).toMatchObject([{ modelId: weak.id, stockCount: null }]);
+  expect(
+    await select("SELECT 1 FROM assignments WHERE organization_id = $1", [organizationId]),
+  ).toHaveLength(2);
 });
 
 test("orders the register by EN 458's words for a task, and says what decided", async () => {

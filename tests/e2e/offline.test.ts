@@ -104,6 +104,17 @@ test("an order marked done without a connection outlives the browser, meets anot
     .click();
   await page.getByText("Done, not sent yet").first().waitFor();
   await page.getByText("1 thing not sent yet").waitFor();
+  // What nobody has received is simply taken back.
+  await page
+    .getByRole("button", { name: `Undo: ${row.worker.name}` })
+    .first()
+    .click();
+  await page.getByText("not sent yet").first().waitFor({ state: "detached" });
+  await page
+    .getByRole("button", { name: `Mark done: ${row.worker.name}` })
+    .first()
+    .click();
+  await page.getByText("1 thing not sent yet").waitFor();
 
   // The browser is ended and started again, still without a connection.
   await phone?.close();

@@ -209,6 +209,65 @@ describe("the order, one comparison after the other", () => {
   });
 });
 
+/** EN 458 against 85 (memory): 16 − 4 dB leave 88, and the active part takes another 10 off in every band. */
+describe("an active part", () => {
+  const flat = (db: number): OctaveBandValues => [db, db, db, db, db, db, db, db];
+  const active: ActivePart = {
+    attenuationDb: flat(10),
+    delayS: null,
+    gain: null,
+    maximumDb: null,
+    bandwidthHz: null,
+    saturatesAboveDb: null,
+    batteryMin: null,
+  };
+  const level = buildLevel(100, { lcMinusLaDb: 0, octaveBandsDb: flat(93) });
+  const noises = [{ name: "Mill", level, durationMin: 480 }];
+  const bands = (meanDb: number) => ({ meanDb: flat(meanDb), sdDb: flat(4) });
+  const offers = [
+    offer("active", { bands: bands(16), active }),
+    offer("passive", { bands: bands(20) }),
+  ];
+  const ranked = (creditedModelIds?: ReadonlySet<string>) =>
+    new ProtectorChoice(offers, EU, ENERGY_LAW).for(wearer(100, { noises, creditedModelIds }));
+
+  test("is shown beside, and nothing rests on it, where it isn't credited on its wearer", () => {
+    const found = ranked();
+    expect(found.map(({ modelId, word }) => [modelId, word])).toEqual([
+      ["passive", "just-enough"],
+      ["active", "too-little"],
+    ]);
+    expect(found[1]).toMatchObject({ isActiveCredited: false });
+    expect(found[1]!.wornDb).toBeCloseTo(88, 9);
+    expect(found[1]!.wornActiveDb).toBeCloseTo(78, 9);
+    expect(found[1]!.marginDb).toBeCloseTo(85 - (100 - (16 - 1.64 * 4)), 9);
+    expect(found[0]!.wornActiveDb).toBeNull();
+  });
+
+  test("decides where it is, as in the day's verdict; the level with it off stays beside", () => {
+    const found = ranked(new Set(["active"]));
+    expect(found.map(({ modelId, word }) => [modelId, word])).toEqual([
+      ["active", "good"],
+      ["passive", "just-enough"],
+    ]);
+    expect(found[0]).toMatchObject({ isActiveCredited: true });
+    expect(found[0]!.wornDb).toBeCloseTo(88, 9);
+    expect(found[0]!.wornActiveDb).toBeCloseTo(78, 9);
+    expect(found[0]!.marginDb).toBeCloseTo(85 - (100 - (16 - 1.64 * 4) - 10), 9);
+  });
+
+  test("never decides Appendix B's word, which is of the part off", () => {
+    const muff = offer("active", { usRatingDb: 19, bands: bands(16), active });
+    const [found] = new ProtectorChoice([muff], US.protection, US_LAW).for(
+      wearer(100, { noises, creditedModelIds: new Set(["active"]) }),
+    );
+    expect(found).toMatchObject({ isActiveCredited: false, word: "enough" });
+    // The rating off the C-weighted level, which is 100 too.
+    expect(found!.twaDb).toBeCloseTo(81, 9);
+    expect(found!.wornActiveDb).toBeCloseTo(71, 9);
+  });
+});
+
 describe("several noises", () => {
   const noises = [100, 88].map((db) => ({
     name: `${db}`,

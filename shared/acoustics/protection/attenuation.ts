@@ -188,6 +188,21 @@ function usReductionDb(
     : deratedAttenuationDb(ratingDb, type, derating);
 }
 
+/**
+ * Where Appendix B governs, what the label takes off an A-weighted level with no derating, dB: it is shown beside an own
+ * fit. Null under other rules, and where the label has no US number.
+ *
+ * @source osha-1910.95 App. B (ii)
+ */
+export function labelLess7Db(
+  { usRatingDb, kind }: Pick<ProtectorData, "usRatingDb" | "kind">,
+  { adequacy }: Pick<ProtectionRule, "adequacy">,
+): number | null {
+  return adequacy !== "appendix-b" || usRatingDb === null
+    ? null
+    : Math.max(0, deratedAttenuationDb(usRatingDb, derateType(kind), DERATINGS.none));
+}
+
 function byBands(level: TaskLevel, assumedDb: OctaveBandValues): Reduction {
   if (level.octaveBandsDb === null) return missing("octave-band", "no-spectrum");
   return {
@@ -233,7 +248,7 @@ export function methodResult(levelDb: number, reduction: Reduction): MethodResul
  */
 export function activeGainDb(
   level: TaskLevel,
-  protection: Protection,
+  protection: Pick<Protection, "inner" | "outer">,
   alpha: number,
 ): { readonly gainDb: number | null; readonly reason: Reason | null } {
   const { active, bands } = protection.inner;

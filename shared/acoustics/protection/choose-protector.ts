@@ -11,7 +11,7 @@ import {
   type TaskLevel,
 } from "../types";
 import { appendixBWord, en458Word } from "./adequacy";
-import { DERATINGS, lcMinusLaDb } from "./attenuation";
+import { activeGainDb, DERATINGS, labelLess7Db, lcMinusLaDb } from "./attenuation";
 import { combinationAttenuationDb } from "./bone-conduction";
 import { doubleAttenuationDb } from "./double";
 import { A_WEIGHTING_DB, assumedAttenuationDb, hmlOfBandsDb, snrOfBandsDb } from "./octave-band";
@@ -74,6 +74,10 @@ export interface Wearer {
   readonly wornMin: number;
   /** The fit that counts, by model. */
   readonly fits: ReadonlyMap<string, OwnFit>;
+  /**
+   * Models whose active part counts on this wearer: the site credits it, and the check of it has passed. Absent: none.
+   */
+  readonly creditedModelIds?: ReadonlySet<string>;
 }
 
 /** A comparison of two candidates, in the order in which they are made. */
@@ -103,6 +107,10 @@ export interface RankedProtector {
   readonly word: ProtectorWord | null;
   /** While worn in the noise that decides the word; by Appendix B in the loudest. Active part off, dB(A). */
   readonly wornDb: number | null;
+  /** The same with the active part on; null: it has none, or nothing is known of it in that noise. */
+  readonly wornActiveDb: number | null;
+  /** Word and margin are of the active part on. By Appendix B never: its word is of the part off. */
+  readonly isActiveCredited: boolean;
   readonly wornIn: string | null;
   /** By Appendix B: the TWA of all noises with it on, which the word is about. Null under other rules. */
   readonly twaDb: number | null;
@@ -147,6 +155,7 @@ interface Prepared {
 /** A noise with what all offers need of it. */
 interface Noise {
   readonly name: string;
+  readonly level: TaskLevel;
   readonly levelDb: number;
   readonly durationMin: number;
   readonly isBare: boolean;
@@ -161,7 +170,7 @@ interface Noise {
  * some sums.
  *
  * The order is lexicographic: what gear, missing data or the archive exclude comes last; then the word while worn
- * (active part off, which a battery can't take away); where the rule's word is of the whole shift, what is too little in
+ * (active part off, which a battery can't take away, unless it is credited on this wearer, as in a day's verdict); where the rule's word is of the whole shift, what is too little in
  * a task by EN 458 after what is not, and so what is too much; then the lower-confidence margin under the target, not rounded
  * (where all are too much: the least of it); own fit; whether the battery lasts; stock; name. Each says which comparison
  * put it behind the one before.
@@ -203,7 +212,8 @@ export class ProtectorChoice {
     for (let index = 0; index < count; index += 1) {
       const one = prepared[index]!;
       const fit = fitOf(one, wearer);
-      const atEar = this.atEar(one, noises, fit, targetDb, scaleDb);
+      const isCredited = wearer.creditedModelIds?.has(one.offer.inner.modelId) ?? false;
+      const atEar = this.atEar(one, noises, fit, isCredited, targetDb, scaleDb);
       const judged = {
         atEar,
         fit,
@@ -228,7 +238,7 @@ export class ProtectorChoice {
       const index = key - place * count;
       const decidedBy = before === null ? "first" : decidingComparison(before, place);
       before = place;
-      ranked.push(shownAs(prepared[index]!, found[index]!, decidedBy, hasLower));
+      ranked.push(shownAs(prepared[index]!, found[index]!, decidedBy, hasLower, this.rule.alpha));
     }
     return ranked;
   }
@@ -238,6 +248,7 @@ export class ProtectorChoice {
     prepared: Prepared,
     noises: readonly Noise[],
     fit: OwnFit | null,
+    isCredited: boolean,
     targetDb: number | null,
     scaleDb: number | null,
   ): AtEar | null {
@@ -250,7 +261,9 @@ export class ProtectorChoice {
     // Plain variables, and one object at the end: this runs for every worker, model and noise.
     let decidingWord: ProtectorWord | null = null;
     let decidingDb = Number.NaN;
-    let decidingIn: string | null = null;
+    let decidingIn: Noise | null = null;
+    let decidingActiveDb: number | null = null;
+    let offDb = Number.NaN;
     let scaleWord: ProtectorWord | null = null;
     let scaledDb = Number.NaN;
     let scaleIn: string | null = null;
@@ -274,7 +287,8 @@ export class ProtectorChoice {
       if (isByShift) {
         if (decidingIn === null || wornDb > decidingDb) {
           decidingDb = wornDb;
-          decidingIn = noise.name;
+          offDb = wornDb;
+          decidingIn = noise;
         }
         if (scaleDb !== null) {
           const word = en458Word(wornDb, scaleDb);
@@ -289,16 +303,25 @@ export class ProtectorChoice {
         lowSum += noise.durationMin * weightOf(lowDb, law);
         continue;
       }
+      const gainDb = isCredited
+        ? activeGainDb(noise.level, prepared.offer, rule.alpha).gainDb
+        : null;
+      const judgedDb = gainDb === null ? wornDb : wornDb - gainDb;
       const word =
-        rule.adequacy === "en-458" && targetDb !== null ? en458Word(wornDb, targetDb) : null;
+        rule.adequacy === "en-458" && targetDb !== null ? en458Word(judgedDb, targetDb) : null;
       if (targetDb !== null) {
-        likeMarginDb = Math.min(likeMarginDb, targetDb - likeDb);
-        lowMarginDb = Math.min(lowMarginDb, targetDb - lowDb);
+        likeMarginDb = Math.min(likeMarginDb, targetDb - likeDb + (gainDb ?? 0));
+        lowMarginDb = Math.min(
+          lowMarginDb,
+          targetDb - lowDb + (gainDb === null ? 0 : lowGainDb(noise, prepared.offer)),
+        );
       }
-      if (decidingIn === null || decidesBefore(word, wornDb, decidingWord, decidingDb)) {
+      if (decidingIn === null || decidesBefore(word, judgedDb, decidingWord, decidingDb)) {
         decidingWord = word;
-        decidingDb = wornDb;
-        decidingIn = noise.name;
+        decidingDb = judgedDb;
+        offDb = wornDb;
+        decidingActiveDb = gainDb === null ? null : judgedDb;
+        decidingIn = noise;
       }
     }
     const twaOf = (sum: number) => levelFactor(law) * Math.log10(sum / law.referenceMin);
@@ -306,8 +329,9 @@ export class ProtectorChoice {
     return {
       word:
         twaDb === null ? decidingWord : targetDb === null ? null : appendixBWord(twaDb, targetDb),
-      wornDb: decidingDb,
+      wornDb: offDb,
       wornIn: decidingIn!,
+      creditedDb: decidingActiveDb,
       twaDb,
       scaleWord,
       scaleIn,
@@ -320,8 +344,11 @@ export class ProtectorChoice {
 
 interface AtEar {
   readonly word: ProtectorWord | null;
+  /** Active part off, in the deciding noise. */
   readonly wornDb: number;
-  readonly wornIn: string;
+  readonly wornIn: Noise;
+  /** Active part on, where the word is of that; null: it is of the part off. */
+  readonly creditedDb: number | null;
   /** See `RankedProtector`. */
   readonly scaleWord: ProtectorWord | null;
   readonly scaleIn: string | null;
@@ -446,11 +473,26 @@ function isLeastFirst(atEar: AtEar | null, marginDb: number | null): boolean {
   return atEar.word === "too-much" || (atEar.word === "enough" && atEar.scaleWord === "too-much");
 }
 
+/** What an active part adds for the share of lower confidence, where it adds something at all, dB. */
+const lowGainDb = ({ level }: Noise, offer: Offer): number =>
+  activeGainDb(level, offer, LOWER_CONFIDENCE_ALPHA).gainDb ?? 0;
+
+function wornActiveDb(
+  { wornDb, wornIn, creditedDb }: AtEar,
+  offer: Offer,
+  alpha: number,
+): number | null {
+  if (creditedDb !== null || offer.inner.active === null) return creditedDb;
+  const { gainDb } = activeGainDb(wornIn.level, offer, alpha);
+  return gainDb === null ? null : wornDb - gainDb;
+}
+
 function shownAs(
   { offer, labelLess7Db }: Prepared,
   judged: Judged,
   decidedBy: DecidedBy,
   hasLower: boolean,
+  alpha: number,
 ): RankedProtector {
   const { atEar, fit, excludedBy, batteryLasts } = judged;
   return {
@@ -461,7 +503,9 @@ function shownAs(
     excludedBy,
     word: atEar?.word ?? null,
     wornDb: atEar?.wornDb ?? null,
-    wornIn: atEar?.wornIn ?? null,
+    wornActiveDb: atEar && wornActiveDb(atEar, offer, alpha),
+    isActiveCredited: atEar !== null && atEar.creditedDb !== null,
+    wornIn: atEar?.wornIn.name ?? null,
     twaDb: atEar?.twaDb ?? null,
     scaleWord: atEar?.scaleWord ?? null,
     scaleIn: atEar?.scaleIn ?? null,
@@ -518,13 +562,7 @@ function prepare(offer: Offer, rule: Rule): Prepared {
       snrDb: inner.snrDb,
       usReductionDb: usReductionDb(inner, rule),
       usRatingDb: rule.derating === "none" ? inner.usRatingDb : null,
-      labelLess7Db:
-        rule.adequacy === "appendix-b" && inner.usRatingDb !== null
-          ? Math.max(
-              0,
-              deratedAttenuationDb(inner.usRatingDb, derateType(inner.kind), DERATINGS.none),
-            )
-          : null,
+      labelLess7Db: labelLess7Db(inner, rule),
       percentileDb: inner.percentile?.mostDb ?? null,
       slc80Db: inner.slc80Db,
     };
@@ -569,7 +607,16 @@ function toNoise({ name, level, durationMin, isBare = false }: Wearer["noises"][
   if (powers)
     for (const [band, bandDb] of octaveBandsDb.entries())
       powers[band] = bandDb === null ? Number.NaN : 10 ** ((bandDb + A_WEIGHTING_DB[band]!) / 10);
-  return { name, levelDb, durationMin, isBare, powers, lcLaDb: lcMinusLaDb(level), statedLcLaDb };
+  return {
+    name,
+    level,
+    levelDb,
+    durationMin,
+    isBare,
+    powers,
+    lcLaDb: lcMinusLaDb(level),
+    statedLcLaDb,
+  };
 }
 
 interface Reductions {

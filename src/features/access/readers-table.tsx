@@ -53,6 +53,7 @@ export function ReadersTable({
       state={error ? "failed" : readers === undefined ? "loading" : "ready"}
       error={error}
       onRetry={onRetry}
+      stacksOnPhone
       empty={<Empty title={i18n.t("Nobody.")} />}
     />
   );

@@ -137,6 +137,7 @@ test("the part on counts for a worker with a passed check, where the site gives 
     id,
     name: "D. Tavernor",
     ownFitDb: null,
+    labelLess7Db: null,
     activeCheckPassed: true,
     audioDb: null,
   };

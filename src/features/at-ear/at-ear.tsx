@@ -190,10 +190,16 @@ function Lead({ view, onLeaveWorker }: { view: AtEarView; onLeaveWorker: () => v
           {" "}
           {worker.ownFitDb === null
             ? i18n.t("For {name}: no own fit counts.", { name: isolate(worker.name) })
-            : i18n.t("For {name}, own fit {fit} dB.", {
-                name: isolate(worker.name),
-                fit: formatLevel(worker.ownFitDb, locale),
-              })}{" "}
+            : worker.labelLess7Db === null
+              ? i18n.t("For {name}, own fit {fit} dB.", {
+                  name: isolate(worker.name),
+                  fit: formatLevel(worker.ownFitDb, locale),
+                })
+              : i18n.t("For {name}, own fit {fit} dB; by the label, rating − 7: {less7} dB.", {
+                  name: isolate(worker.name),
+                  fit: formatLevel(worker.ownFitDb, locale),
+                  less7: formatLevel(worker.labelLess7Db, locale),
+                })}{" "}
           <TextButton onClick={onLeaveWorker}>{i18n.t("Without the worker")}</TextButton>
         </>
       )}

@@ -3,27 +3,27 @@ import { useQuery } from "@tanstack/react-query";
 import { useState } from "react";
 import { z } from "zod";
 import { formatLevel } from "../../../shared/format/level";
-import type { ProtectorChoiceView, Wearer } from "../../../shared/schemas/choice";
+import {
+  GivingPreview,
+  type ProtectorChoiceView,
+  type Wearer,
+} from "../../../shared/schemas/choice";
 import type { Candidate, Gear } from "../../../shared/schemas/fit";
-import { Button } from "../../components/button";
+import type { ManyAssignmentsInput } from "../../../shared/schemas/worker";
+import { useChangePreview } from "../../components/change-preview";
 import { DataTable } from "../../components/data-table";
 import { Empty } from "../../components/empty";
-import {
-  DateField,
-  Form,
-  FormActions,
-  RadioGroup,
-  SubmitButton,
-  showIssuesOn,
-  useSchemaForm,
-} from "../../components/form";
-import { FormProblem } from "../../components/form-problem";
+import { DateField, Form, RadioGroup, showIssuesOn, useSchemaForm } from "../../components/form";
 import { TextButton, TextLink } from "../../components/link";
+import { LookActions } from "../../components/reviewed-change";
+import { ApiError } from "../../lib/api";
 import { useChangeKey } from "../../lib/change-key";
 import { useLocale } from "../../lib/i18n";
+import { useOneAtATime } from "../../lib/one-at-a-time";
 import { references } from "../../lib/references";
 import { gearWord, passWord } from "../../lib/register-words";
 import { paths } from "../../paths";
+import { GiveReview } from "./give-review";
 import { useAssignMany } from "./queries";
 
 const GiveFields = z.object({
@@ -32,7 +32,7 @@ const GiveFields = z.object({
   workerIds: z.array(z.uuid()).min(1),
 });
 
-/** Who gets what was picked, for which use, from when: all of them or none. */
+/** Who gets what was picked, for which use, from when; looked at with who changes verdict, then given to all or none. */
 export function GiveForm({
   choice,
   candidate,
@@ -48,7 +48,12 @@ export function GiveForm({
   const locale = useLocale();
   const { subject, wearers, date } = choice;
   const assign = useAssignMany();
+  const { begin, end } = useOneAtATime();
   const changeKey = useChangeKey();
+  const [reviewed, setReviewed] = useState<{
+    body: ManyAssignmentsInput;
+    preview: GivingPreview;
+  } | null>(null);
   /** In the order in which the server names them. */
   const [sent, setSent] = useState<readonly string[]>([]);
   const conflictOf = useGearConflict(candidate);
@@ -82,11 +87,38 @@ export function GiveForm({
       : (errors.workerIds as { message?: string }[] | undefined)?.[index]?.message;
   };
 
-  return (
+  const showIssues = showIssuesOn(
+    {
+      setError: (path, issue, options) =>
+        form.setError(path.replace(/^assignment\./, "") as "fromDate", issue, options),
+    },
+    i18n,
+  );
+  const preview = useChangePreview("/assignments/many/preview", GivingPreview, showIssues);
+  function give(body: ManyAssignmentsInput) {
+    if (!begin()) return;
+    assign.mutate(
+      { body, key: changeKey.keyFor(body) },
+      {
+        onSuccess: () => {
+          changeKey.forget();
+          onGiven(body.workerIds, body.assignment.fromDate);
+        },
+        onError: (error) => {
+          // What is wrong stands at its worker or field: back to the form.
+          if (error instanceof ApiError && error.issues.length > 0) setReviewed(null);
+          showIssues(error);
+        },
+        onSettled: end,
+      },
+    );
+  }
+
+  const filledIn = (
     <Form
       aria-label={i18n.t("Give {protector}", { protector: candidate.name })}
       onSubmit={form.handleSubmit((filled) => {
-        if (assign.isPending) return;
+        if (preview.isPending) return;
         // Chosen before the date or the use was changed to one for which they have it.
         const workerIds = filled.workerIds.filter((id) => !holders.has(id));
         if (workerIds.length === 0) {
@@ -107,24 +139,7 @@ export function GiveForm({
           },
         };
         setSent(workerIds);
-        assign.mutate(
-          { body, key: changeKey.keyFor(body) },
-          {
-            onSuccess: () => {
-              changeKey.forget();
-              onGiven(workerIds, filled.fromDate);
-            },
-            onError: (error) => {
-              showIssuesOn(
-                {
-                  setError: (path, issue, options) =>
-                    form.setError(path.replace(/^assignment\./, "") as "fromDate", issue, options),
-                },
-                i18n,
-              )(error);
-            },
-          },
-        );
+        preview.mutate(body, { onSuccess: (found) => setReviewed({ body, preview: found }) });
       })}
     >
       {subject.kind === "task" && (
@@ -241,7 +256,7 @@ export function GiveForm({
             id: "fit",
             head: i18n.t("Own fit"),
             hidesOnPhone: true,
-            cell: ({ id, fits }) => {
+            cell: ({ id, fits, checkedModelIds }) => {
               const fit = fits.find(({ modelId }) => modelId === candidate.modelId);
               if (candidate.outerModelId !== null) return "–";
               return fit ? (
@@ -250,6 +265,9 @@ export function GiveForm({
                   <span className={fit.hasPassed === false ? "is-fault" : "beneath"}>
                     {passWord(i18n, fit)}
                   </span>
+                  {checkedModelIds.includes(candidate.modelId) && (
+                    <span className="beneath">{i18n.t("active part passed")}</span>
+                  )}
                 </span>
               ) : (
                 <TextLink to={paths.fittingOf(id)}>{i18n.t("Test the fit")}</TextLink>
@@ -265,14 +283,26 @@ export function GiveForm({
           })}
         </p>
       )}
-      <FormProblem error={assign.error} />
-      <FormActions>
-        <SubmitButton isBusy={assign.isPending}>
-          {i18n.t("Give {protector}", { protector: candidate.name })}
-        </SubmitButton>
-        <Button onClick={onLeave}>{i18n.t("Leave it")}</Button>
-      </FormActions>
+      <LookActions preview={preview} onLeave={onLeave} />
     </Form>
+  );
+  return (
+    <>
+      {/* Kept as it is filled in while what it would do stands in its place. */}
+      <div hidden={reviewed !== null}>{filledIn}</div>
+      {reviewed && (
+        <GiveReview
+          preview={reviewed.preview}
+          protector={candidate.name}
+          count={reviewed.body.workerIds.length}
+          fromDate={reviewed.body.assignment.fromDate}
+          isSaving={assign.isPending}
+          error={assign.error}
+          onGive={() => give(reviewed.body)}
+          onBack={() => setReviewed(null)}
+        />
+      )}
+    </>
   );
 }
 

@@ -1,4 +1,5 @@
 import { useLingui } from "@lingui/react";
+import { hasToPass } from "../../../shared/acoustics/protection/fit-rating";
 import type { ProtectorKind } from "../../../shared/acoustics/types";
 import { formatDate, formatShortDate } from "../../../shared/format/date";
 import { formatDuration } from "../../../shared/format/duration";
@@ -154,6 +155,8 @@ export function IssueSlipPage({ slip, issuedBy }: { slip: IssueSlip; issuedBy: s
   function fitWords({ fit, kind }: Device): string {
     if (fit === null) return protectorKindWord(i18n, kind as ProtectorKind);
     const date = formatShortDate(fit.testedOn, locale);
+    if (fit.needDb !== null && !hasToPass(fit.needDb))
+      return i18n.t("Fit measured {date}: nothing to pass", { date });
     if (fit.hasPassed === null) return i18n.t("Fit measured {date}", { date });
     return fit.hasPassed
       ? i18n.t("Fit checked {date}: fits", { date })
@@ -189,14 +192,7 @@ function Scale() {
   return (
     <svg className="slip-scale" width={STRIP_WIDTH_PX} height={16} aria-hidden="true">
       {levelsDb.map((levelDb) => (
-        <text
-          key={levelDb}
-          x={levelX(levelDb, STRIP_WIDTH_PX)}
-          y={13}
-          textAnchor={
-            levelDb === STRIP_FROM_DB ? "start" : levelDb === STRIP_TO_DB ? "end" : "middle"
-          }
-        >
+        <text key={levelDb} x={levelX(levelDb, STRIP_WIDTH_PX)} y={13} textAnchor="middle">
           {levelDb}
         </text>
       ))}

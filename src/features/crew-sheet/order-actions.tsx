@@ -1,7 +1,8 @@
 import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
-import { type FormEvent, type ReactNode, useId, useState } from "react";
+import { type FormEvent, type ReactNode, useEffect, useId, useRef, useState } from "react";
 import { findingStateWord } from "../../../shared/findings/words";
+import { formatTime } from "../../../shared/format/date";
 import { Button } from "../../components/button";
 import { FormProblem } from "../../components/form-problem";
 import { TextButton } from "../../components/link";
@@ -10,6 +11,7 @@ import { useChangeKey } from "../../lib/change-key";
 import { useTypedText } from "../../lib/keep-typed";
 import { keptActsOf, useKeptActs } from "../../lib/kept-acts";
 import { useMoveFocus } from "../../lib/move-focus";
+import { useSecondsLeft } from "../../lib/seconds-left";
 import { savedMeanwhile } from "../../lib/stale";
 import { tooManyText } from "../../lib/too-many";
 import { useUser } from "../session/session";
@@ -19,6 +21,8 @@ import { StaleOrder } from "./stale-order";
 /** A reason of two letters says nothing; the server asks for three as well, and takes no more. */
 const SHORTEST_REASON = 3;
 const LONGEST_REASON = 2000;
+/** So long a tap by mistake can be taken back with another. */
+const UNDO_FOR_MS = 10_000;
 
 /** It waits on this device for a connection, or for the same person to sign in again. */
 const isToBeKept = (error: unknown): boolean =>
@@ -47,7 +51,12 @@ export function useSendStep(
       path: `/findings/${findingId}/steps`,
       body: step,
       revision,
-      words: { kind: step.kind, findingId, workerName, text: step.text },
+      words: {
+        kind: step.kind,
+        findingId,
+        workerName,
+        text: step.kind === "undo" ? "" : step.text,
+      },
     });
     change.mutate(
       { step, revision, idempotencyKey: key },
@@ -88,6 +97,7 @@ export const keptWords = (i18n: I18n): string =>
 /** Mark done, large enough for a hand in a glove, and Can’t, because… beneath it. */
 export function OrderActions({
   crewId,
+  timeZone,
   order,
   workerName,
   onStale,
@@ -95,6 +105,8 @@ export function OrderActions({
   noticed,
 }: {
   crewId: string;
+  /** Of the site. */
+  timeZone: string;
   order: SheetOrder;
   workerName: string;
   /** The sheet is out of date: it is to be read again. */
@@ -106,19 +118,24 @@ export function OrderActions({
 }) {
   const { i18n } = useLingui();
   const { send, forget, asked, current, isBusy, error } = useSendStep(crewId, order, workerName);
-  const kept = useKeptActs(useUser().id).find(
+  const userId = useUser().id;
+  const kept = useKeptActs(userId).find(
     ({ words: act }) =>
       act.kind !== "round" && act.kind !== "comment" && act.findingId === order.findingId,
   );
-  const canStep = order.canMarkDone && !kept;
+  const [sent, setSent] = useState<{ kind: "mark-done" | "cannot"; at: Date } | null>(null);
+  const secondsLeft = useSecondsLeft(sent && sent.at.getTime() + UNDO_FOR_MS);
+  const canUndoSent = sent !== null && secondsLeft > 0 && !kept;
+  const canUndo = canUndoSent || (kept?.state === "unsent" && kept.words.kind !== "undo");
+  const canStep = order.canMarkDone && !kept && !canUndoSent;
   const [text, setText] = useTypedText(`cannot ${order.findingId}`);
   const [isRefusing, setIsRefusing] = useState(text !== "");
   const [isTooShort, setIsTooShort] = useState(false);
   const [said, setSaid] = useState("");
   const id = useId();
   const [place, moveFocus] = useMoveFocus<HTMLDivElement>();
-  const toState = () => moveFocus("[data-order-state]", "button");
-  const toCannot = () => moveFocus("[data-cannot]", "[data-order-state]");
+  const toState = () => moveFocus("[data-undo]", "[data-order-state]", "button");
+  const toCannot = () => moveFocus("[data-cannot]", "[data-undo]", "[data-order-state]");
 
   function submit(event: FormEvent) {
     event.preventDefault();
@@ -132,7 +149,42 @@ export function OrderActions({
       setIsRefusing(false);
       setText("");
       setSaid(isKept ? keptWords(i18n) : i18n.t("Your reason is with the officer."));
-      toCannot();
+      if (!isKept) setSent({ kind: "cannot", at: new Date() });
+      toState();
+    });
+  }
+
+  // The button comes back with the order's new state, which is later than the answer.
+  const wantsButton = useRef(false);
+  useEffect(() => {
+    if (!canStep || !wantsButton.current) return;
+    wantsButton.current = false;
+    place.current?.querySelector<HTMLElement>("[data-mark-done]")?.focus();
+  }, [canStep, place]);
+
+  // Once the time is up the button goes; the keyboard's place stays where it stood.
+  const hasFocus = useRef(false);
+  useEffect(() => {
+    if (canUndo || !hasFocus.current) return;
+    hasFocus.current = false;
+    if (document.activeElement === document.body)
+      place.current
+        ?.querySelector<HTMLElement>("[data-order-state], [data-mark-done]")
+        ?.focus({ preventScroll: true });
+  }, [canUndo, place]);
+
+  /** What nobody has received is dropped; otherwise a step of its own takes it back. */
+  function undo() {
+    if (kept) {
+      keptActsOf(userId).drop(kept.key);
+      setSaid(i18n.t("Taken back; nothing was sent."));
+      wantsButton.current = true;
+      return;
+    }
+    send({ kind: "undo" }, (isKept) => {
+      setSent(null);
+      setSaid(isKept ? keptWords(i18n) : i18n.t("Undone."));
+      wantsButton.current = true;
     });
   }
 
@@ -142,6 +194,19 @@ export function OrderActions({
     setIsTooShort(false);
     forget();
     toCannot();
+  }
+
+  let stateText = findingStateWord(i18n, order.state);
+  if (kept) {
+    if (kept.words.kind === "mark-done") stateText = i18n.t("Done, not sent yet");
+    else if (kept.words.kind === "undo") stateText = i18n.t("Undone, not sent yet");
+    else stateText = i18n.t("Can’t, not sent yet");
+  } else if (canUndoSent) {
+    const time = formatTime(sent.at.toISOString(), timeZone);
+    stateText =
+      sent.kind === "mark-done"
+        ? i18n.t("Done, {time}.", { time })
+        : i18n.t("Can’t, {time}.", { time });
   }
 
   const fault = isTooShort
@@ -156,10 +221,12 @@ export function OrderActions({
             kind="big"
             size="supervisor"
             isBusy={isBusy && asked?.kind === "mark-done"}
+            data-mark-done
             aria-label={i18n.t("Mark done: {name}", { name: workerName })}
             onClick={() =>
               send({ kind: "mark-done", text: "" }, (isKept) => {
                 setSaid(isKept ? keptWords(i18n) : i18n.t("The officer checks it."));
+                if (!isKept) setSent({ kind: "mark-done", at: new Date() });
                 toState();
               })
             }
@@ -168,11 +235,28 @@ export function OrderActions({
           </Button>
         ) : (
           <span className="sheet-state" data-order-state tabIndex={-1}>
-            {kept
-              ? kept.words.kind === "mark-done"
-                ? i18n.t("Done, not sent yet")
-                : i18n.t("Can’t, not sent yet")
-              : findingStateWord(i18n, order.state)}
+            {stateText}
+            {canUndo && (
+              <span className="sheet-undo">
+                <TextButton
+                  data-undo
+                  onFocus={() => {
+                    hasFocus.current = true;
+                  }}
+                  onBlur={() => {
+                    hasFocus.current = false;
+                  }}
+                  aria-label={i18n.t("Undo: {name}", { name: workerName })}
+                  disabled={isBusy}
+                  onClick={undo}
+                >
+                  {i18n.t("Undo")}
+                </TextButton>
+                {canUndoSent && (
+                  <span aria-hidden="true">{i18n.t("({count} s)", { count: secondsLeft })}</span>
+                )}
+              </span>
+            )}
           </span>
         )}
       </div>

@@ -39,7 +39,10 @@ export const crewSheetQueries = {
 };
 
 export type SheetOrder = NonNullable<CrewSheetRow["order"]>;
-export type OrderStep = Extract<FindingStepInput, { kind: "mark-done" | "cannot" | "comment" }>;
+export type OrderStep = Extract<
+  FindingStepInput,
+  { kind: "mark-done" | "cannot" | "undo" | "comment" }
+>;
 
 const withStep = (rows: readonly CrewSheetRow[], finding: FindingView): CrewSheetRow[] =>
   rows.map((row) =>

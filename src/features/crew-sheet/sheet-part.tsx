@@ -1,9 +1,12 @@
 import { useLingui } from "@lingui/react";
 import { type ReactNode, useId, useState } from "react";
+import { isolate } from "../../../shared/i18n/isolate";
 import type { CrewSheetRow } from "../../../shared/schemas/crew";
 import { StripScale } from "../../components/drop-strip";
 import { TextButton } from "../../components/link";
 import type { StripFrame } from "../../components/strip-of-day";
+import { useLocale } from "../../lib/i18n";
+import { lentWords } from "./beside-name";
 import { numberWord } from "./number-words";
 import type { PartName, SheetPart } from "./sheet-parts";
 import { type NextSheet, SheetRow } from "./sheet-row";
@@ -54,6 +57,7 @@ export function SheetRows({
   part,
   rows,
   crewId,
+  timeZone,
   frame,
   nextSheetOf = () => null,
   onStale,
@@ -61,13 +65,15 @@ export function SheetRows({
   part: PartName;
   rows: SheetPart;
   crewId: string;
+  timeZone: string;
   frame: StripFrame | null;
   nextSheetOf?: (row: CrewSheetRow) => NextSheet | null;
   onStale: () => void;
 }) {
   const { i18n } = useLingui();
+  const locale = useLocale();
   const [showsAll, setShowsAll] = useState(false);
-  const common = { part, frame, crewId, onStale };
+  const common = { part, frame, crewId, timeZone, onStale };
   const count = rows.quiet.length;
   const shown = showsAll ? rows.quiet : rows.quiet.slice(0, SHOWN_AT_ONCE);
   const more = count - shown.length;
@@ -125,9 +131,20 @@ export function SheetRows({
       {rows.absent.length > 0 && (
         <p className="sheet-absent">
           {i18n.t("Absent: {names}", {
-            names: rows.absent.map(({ worker }) => worker.name).join(", "),
+            names: rows.absent.map(({ worker }) => isolate(worker.name)).join(", "),
           })}
         </p>
+      )}
+      {rows.lent.map(
+        ({ worker, lentTo }) =>
+          lentTo && (
+            <p key={worker.id} className="sheet-absent">
+              {i18n.t("{name}: {what}", {
+                name: isolate(worker.name),
+                what: lentWords(i18n, locale, lentTo),
+              })}
+            </p>
+          ),
       )}
     </>
   );

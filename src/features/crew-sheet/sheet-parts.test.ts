@@ -51,9 +51,11 @@ const order = (facts: Partial<Order> = {}): Order => ({
   ...facts,
 });
 const row = (name: string, facts: Partial<CrewSheetRow> = {}): CrewSheetRow => ({
-  worker: { id: name, name, employeeNumber: name },
+  worker: { id: name, name, employeeNumber: name, employer: "own", employerName: null },
   isAbsent: false,
   isLoan: false,
+  lentBy: null,
+  lentTo: null,
   figures: figures(),
   order: null,
   ...facts,

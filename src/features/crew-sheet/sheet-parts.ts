@@ -1,6 +1,7 @@
 import type { I18n } from "@lingui/core";
 import type { Verdict } from "../../../shared/acoustics/types";
 import { formatDay } from "../../../shared/format/date";
+import { startsSentence } from "../../../shared/format/words";
 import type { Locale } from "../../../shared/i18n/index";
 import { ruleSetVersion } from "../../../shared/rule-sets";
 import type { CrewSheetRow, CrewSheetView } from "../../../shared/schemas/crew";
@@ -17,7 +18,14 @@ export interface SheetPart {
   /** No figure, and why. */
   readonly open: readonly CrewSheetRow[];
   readonly absent: readonly CrewSheetRow[];
+  /** With another crew that day. */
+  readonly lent: readonly CrewSheetRow[];
 }
+
+/** Lent for the day, and no shift of that day is known here. */
+const isAway = ({ isAbsent, lentTo, figures }: CrewSheetRow): boolean =>
+  !isAbsent && lentTo !== null && figures === null;
+const isHere = (row: CrewSheetRow): boolean => !row.isAbsent && !isAway(row);
 
 /** Orders that are about what happened; the others are about the shift to come and stand on the sheet for it. */
 const ABOUT_THE_PAST: ReadonlySet<FindingKind> = new Set([
@@ -66,18 +74,19 @@ export const isOpenOrder = ({ order }: CrewSheetRow): boolean =>
   order !== null && order.state !== "done";
 
 export function splitExpected(rows: readonly CrewSheetRow[]): SheetPart {
-  const present = rows.filter(({ isAbsent }) => !isAbsent);
+  const present = rows.filter(isHere);
   const rest = present.filter(({ order }) => order === null);
   return {
     flagged: present.filter(({ order }) => order !== null),
     quiet: rest.filter(({ figures }) => figures !== null),
     open: rest.filter(({ figures }) => figures === null),
     absent: rows.filter(({ isAbsent }) => isAbsent),
+    lent: rows.filter(isAway),
   };
 }
 
 export function splitLast(rows: readonly CrewSheetRow[], hasLimitAtEar: boolean): SheetPart {
-  const present = rows.filter(({ isAbsent }) => !isAbsent);
+  const present = rows.filter(isHere);
   const verdictOf = ({ figures }: CrewSheetRow) =>
     figures ? sheetVerdict(figures, hasLimitAtEar) : null;
   const isFlagged = (row: CrewSheetRow) => {
@@ -100,6 +109,7 @@ export function splitLast(rows: readonly CrewSheetRow[], hasLimitAtEar: boolean)
     quiet: rest.filter((row) => verdictOf(row) === "under"),
     open: rest.filter((row) => verdictOf(row) === "not-assessed" || verdictOf(row) === null),
     absent: rows.filter(({ isAbsent }) => isAbsent),
+    lent: rows.filter(isAway),
   };
 }
 
@@ -108,7 +118,7 @@ export function isForToday(row: CrewSheetRow, expected: readonly CrewSheetRow[])
   return (
     row.order !== null &&
     !ABOUT_THE_PAST.has(row.order.kind) &&
-    expected.some(({ worker, isAbsent }) => worker.id === row.worker.id && !isAbsent)
+    expected.some((one) => one.worker.id === row.worker.id && isHere(one))
   );
 }
 
@@ -182,17 +192,17 @@ const absentWords = (i18n: I18n, count: number) =>
 /** "Tuesday 1 December, 06:00. Eleven in noise." */
 export function expectedLead(i18n: I18n, locale: Locale, sheet: CrewSheetView): string {
   const { rows, date } = sheet.expected;
-  const present = rows.filter(({ isAbsent }) => !isAbsent);
+  const present = rows.filter(isHere);
   const inNoise = present.filter(
     ({ figures }) => figures && ["over", "cant-tell-yet"].includes(figures.verdictOutside),
   ).length;
-  const absent = rows.length - present.length;
+  const absent = rows.filter(({ isAbsent }) => isAbsent).length;
   const who = [
     i18n.t("{number} in noise", { number: numberWord(i18n, inNoise) }),
     ...(absent > 0 ? [absentWords(i18n, absent)] : []),
   ].join(", ");
   return i18n.t("{day}, {start}. {who}.", {
-    day: formatDay(date, locale),
+    day: startsSentence(formatDay(date, locale), locale),
     start: sheet.crew.usualStart,
     who: capital(i18n, who),
   });
@@ -203,7 +213,7 @@ export function lastLead(i18n: I18n, locale: Locale, last: CrewSheetView["last"]
   if (last.date === null) return i18n.t("The last shift stands here once it is entered.");
   const recorded = last.rows.filter(({ figures, isAbsent }) => figures && !isAbsent).length;
   const absent = last.rows.filter(({ isAbsent }) => isAbsent).length;
-  const missing = last.rows.length - recorded - absent;
+  const missing = last.rows.length - recorded - absent - last.rows.filter(isAway).length;
   const who = [
     i18n.t("{number} recorded", { number: numberWord(i18n, recorded) }),
     ...(absent > 0 ? [absentWords(i18n, absent)] : []),
@@ -211,5 +221,8 @@ export function lastLead(i18n: I18n, locale: Locale, last: CrewSheetView["last"]
       ? [i18n.t("{number} not recorded", { number: numberWord(i18n, missing) })]
       : []),
   ].join(", ");
-  return i18n.t("{day}. {who}.", { day: formatDay(last.date, locale), who: capital(i18n, who) });
+  return i18n.t("{day}. {who}.", {
+    day: startsSentence(formatDay(last.date, locale), locale),
+    who: capital(i18n, who),
+  });
 }

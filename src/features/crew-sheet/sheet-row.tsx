@@ -7,6 +7,7 @@ import { findingWord } from "../../../shared/findings/words";
 import { formatDate, formatDay } from "../../../shared/format/date";
 import { formatLimit } from "../../../shared/format/level";
 import type { Locale } from "../../../shared/i18n/index";
+import { isolate } from "../../../shared/i18n/isolate";
 import type { CrewSheetRow } from "../../../shared/schemas/crew";
 import type { DayFigures } from "../../../shared/schemas/finding";
 import { outsideVerdict, outsideWords } from "../../components/day-figures";
@@ -16,6 +17,7 @@ import { protectorWordText } from "../../components/protector-word";
 import { type StripFrame, stripOfDay } from "../../components/strip-of-day";
 import { Verdict } from "../../components/verdict";
 import { useLocale } from "../../lib/i18n";
+import { employerWords, lentWords } from "./beside-name";
 import { OrderActions } from "./order-actions";
 import type { SheetOrder } from "./queries";
 import { asksAboutDay, type PartName, sheetVerdict } from "./sheet-parts";
@@ -102,6 +104,21 @@ function RowWord({
   return <Verdict verdict="not-assessed" />;
 }
 
+/** Whose employee somebody is, and between which crews they are lent. */
+function BesideName({ row: { worker, isLoan, lentBy, lentTo } }: { row: CrewSheetRow }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const words = [
+    employerWords(i18n, worker),
+    isLoan &&
+      (lentBy?.crewName
+        ? i18n.t("on loan from {crew}", { crew: isolate(lentBy.crewName) })
+        : i18n.t("on loan")),
+    lentTo && lentWords(i18n, locale, lentTo),
+  ].filter(Boolean);
+  return words.length > 0 && <span className="sheet-loan"> {words.join(", ")}</span>;
+}
+
 function Noticed({ order }: { order: SheetOrder }) {
   const { i18n } = useLingui();
   const locale = useLocale();
@@ -148,6 +165,7 @@ export function SheetRow({
   part,
   frame,
   crewId,
+  timeZone,
   isFlagged,
   nextSheet = null,
   onStale,
@@ -156,6 +174,7 @@ export function SheetRow({
   part: PartName;
   frame: StripFrame | null;
   crewId: string;
+  timeZone: string;
   isFlagged: boolean;
   /** Where the order is dealt with on the sheet for the shift to come: its date, and whether that is today. */
   nextSheet?: NextSheet | null;
@@ -171,7 +190,7 @@ export function SheetRow({
       <div className="sheet-name">
         <h3>
           {worker.name}
-          {row.isLoan && <span className="sheet-loan"> {i18n.t("on loan")}</span>}
+          <BesideName row={row} />
         </h3>
         <RowWord row={row} part={part} frame={frame} />
       </div>
@@ -221,6 +240,7 @@ export function SheetRow({
         ) : (
           <OrderActions
             crewId={crewId}
+            timeZone={timeZone}
             order={order}
             workerName={worker.name}
             onStale={onStale}

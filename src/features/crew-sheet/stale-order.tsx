@@ -24,13 +24,17 @@ export function StaleOrder({
   const { i18n } = useLingui();
   const last = current.steps.at(-1);
   const isOver =
-    current.state === "closed" || (current.state === "done" && step.kind !== "comment");
+    current.state === "closed" ||
+    step.kind === "undo" ||
+    (current.state === "done" && step.kind !== "comment");
   const mine =
     step.kind === "mark-done"
       ? i18n.t("Mark done")
       : step.kind === "cannot"
         ? i18n.t("Can’t, because: {text}", { text: step.text })
-        : step.text;
+        : step.kind === "undo"
+          ? i18n.t("Undo")
+          : step.text;
   return (
     <Dialog
       isOpen

@@ -11,7 +11,7 @@ import {
   MeasureStrike,
   MeasureView,
 } from "../../../shared/schemas/follow-up";
-import { Button } from "../../components/button";
+import { Button, ButtonLink } from "../../components/button";
 import {
   DateField,
   Form,
@@ -50,12 +50,15 @@ export function Measures({
   owners,
   today,
   canChange,
+  tryPath,
 }: {
   findingId: string;
   measures: readonly MeasureView[];
   owners: FollowUpView["owners"];
   today: string;
   canChange: boolean;
+  /** Where measures are tried before one is entered; null: there is no one day to try them on. */
+  tryPath: string | null;
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
@@ -141,7 +144,8 @@ export function Measures({
             onClick={() => setOpen(open?.kind === "new" ? null : { kind: "new" })}
           >
             {i18n.t("Enter a measure")}
-          </Button>
+          </Button>{" "}
+          {tryPath && <ButtonLink to={tryPath}>{i18n.t("Try changes")}</ButtonLink>}
         </p>
       )}
       {open?.kind === "new" && (

@@ -4,6 +4,7 @@ import { formatDate, formatShortDate } from "../../../shared/format/date";
 import { formatLevel } from "../../../shared/format/level";
 import type { Locale } from "../../../shared/i18n/index";
 import { isolate } from "../../../shared/i18n/isolate";
+import type { DayFigures } from "../../../shared/schemas/finding";
 import type { FollowUpView } from "../../../shared/schemas/follow-up";
 import { DataTable } from "../../components/data-table";
 import {
@@ -34,8 +35,40 @@ function sideWords(i18n: I18n, locale: Locale, { days, ...side }: Proof["before"
     : i18n.t("{median} dB in the middle of {days} days measured, {lowest} to {highest}", words);
 }
 
-/** Noise without protection before and after the first measure was done, on measured days only. */
-export function ProofTable({ proof }: { proof: FollowUpView["proof"] }) {
+/** What came to the ear on the day that showed it, and what does since; nothing where one of the two is not known. */
+function atEarWords(
+  i18n: I18n,
+  locale: Locale,
+  shown: DayFigures,
+  { lowestAtEarDb, highestAtEarDb }: Proof["after"],
+): string | null {
+  if (shown.atEarDb === null || lowestAtEarDb === null || highestAtEarDb === null) return null;
+  const words = {
+    level: formatLevel(shown.atEarDb, locale, shown.atEarBound),
+    day: formatDate(shown.date, locale),
+    lowest: formatLevel(lowestAtEarDb, locale),
+    highest: formatLevel(highestAtEarDb, locale),
+  };
+  return words.lowest === words.highest
+    ? i18n.t(
+        "At the ear it was {level} dB on {day}, which showed it last; after the measure {highest} dB.",
+        words,
+      )
+    : i18n.t(
+        "At the ear it was {level} dB on {day}, which showed it last; after the measure {lowest} to {highest} dB.",
+        words,
+      );
+}
+
+/** Noise without protection, and what of it came to the ear, before and after the first measure was done, on measured days only. */
+export function ProofTable({
+  proof,
+  shown,
+}: {
+  proof: FollowUpView["proof"];
+  /** The last day that showed what was found. */
+  shown: DayFigures | null;
+}) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const rows = proof
@@ -82,6 +115,7 @@ export function ProofTable({ proof }: { proof: FollowUpView["proof"] }) {
           </b>
         )}
       </p>
+      {shown && <p>{atEarWords(i18n, locale, shown, after)}</p>}
       {rows.length > 0 && (
         <div className="stacked-table evidence-table">
           <DataTable

@@ -25,7 +25,7 @@ import { useMoveFocus } from "../../lib/move-focus";
 import { savedMeanwhile } from "../../lib/stale";
 import { findingQueries, useFindingStep } from "./queries";
 
-type StepKind = FindingStepInput["kind"];
+type StepKind = Exclude<FindingStepInput["kind"], "undo">;
 
 /** From where each step may be taken: the server holds to the same. */
 const STEPS_FROM: Readonly<Record<StepKind, readonly FindingView["state"][]>> = {

@@ -3,13 +3,13 @@ import { formatDuration } from "../../../shared/format/duration";
 import { formatLevel, formatLevelChange } from "../../../shared/format/level";
 import { withinSentence } from "../../../shared/format/words";
 import type { Candidate } from "../../../shared/schemas/fit";
+import { Button } from "../../components/button";
 import { type DataColumn, DataTable } from "../../components/data-table";
 import { Empty } from "../../components/empty";
-import { TextButton } from "../../components/link";
 import { ProtectorWord, protectorWordText } from "../../components/protector-word";
 import { useLocale } from "../../lib/i18n";
 import { passWord } from "../../lib/register-words";
-import { decidedWord, exclusionWord } from "./fit-words";
+import { type ActiveCredit, decidedWord, exclusionWord, judgedByWord } from "./fit-words";
 
 /** A device, or two of them, among candidates. */
 export const candidateKey = ({
@@ -42,9 +42,11 @@ export function CandidatesTable({
   caption,
   inHead,
   chosen,
+  pickWord,
   pickLabel,
   onPick,
   hasOwnFit = true,
+  activeCredit,
 }: {
   candidates: readonly Candidate[];
   caption: string;
@@ -52,10 +54,13 @@ export function CandidatesTable({
   inHead: string;
   /** `candidateKey` of the one that was picked. */
   chosen: string;
-  /** What picking one does; absent: nothing is to be picked here. */
+  /** What picking one does, in a word on the button; absent: nothing is to be picked here. */
+  pickWord?: string;
+  /** The same with the name of what is picked, for the ear. */
   pickLabel?: (name: string) => string;
   onPick?: (candidate: Candidate) => void;
   hasOwnFit?: boolean;
+  activeCredit: ActiveCredit;
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
@@ -67,17 +72,7 @@ export function CandidatesTable({
       isRowHead: true,
       cell: (row) => (
         <span className="two-lines">
-          {pickLabel ? (
-            <TextButton
-              className="is-name"
-              aria-label={pickLabel(row.name)}
-              onClick={() => onPick?.(row)}
-            >
-              {row.name}
-            </TextButton>
-          ) : (
-            <span className="is-name">{row.name}</span>
-          )}
+          <span className="is-name">{row.name}</span>
           <span className="beneath">
             {row.excludedBy
               ? exclusionWord(i18n, row.excludedBy)
@@ -86,6 +81,7 @@ export function CandidatesTable({
                   (row.decidedBy === "margin" || row.decidedBy === "least-margin") &&
                     row.marginDb !== null &&
                     formatLevelChange(row.marginDb, locale),
+                  judgedByWord(i18n, row, activeCredit),
                 ]
                   .filter(Boolean)
                   .join(", ")}
@@ -97,14 +93,20 @@ export function CandidatesTable({
       id: "word",
       head: i18n.t("While worn"),
       unit: "dB",
-      cell: ({ word, wornDb, wornIn, twaDb, scaleWord, scaleIn }) => (
+      cell: ({ word, wornDb, wornActiveDb, wornIn, twaDb, scaleWord, scaleIn }) => (
         <ProtectorWord
           word={word}
           beneath={
             wornDb === null
               ? undefined
               : [
-                  `${wornIn ?? ""} ${formatLevel(wornDb, locale)}`.trim(),
+                  wornActiveDb === null
+                    ? `${wornIn ?? ""} ${formatLevel(wornDb, locale)}`.trim()
+                    : i18n.t("{task} {off}, with the active part on {on}", {
+                        task: wornIn ?? "",
+                        off: formatLevel(wornDb, locale),
+                        on: formatLevel(wornActiveDb, locale),
+                      }),
                   twaDb !== null && i18n.t("shift {twa}", { twa: formatLevel(twaDb, locale) }),
                   scaleWord !== null &&
                     i18n.t("by EN 458 {word} in {task}", {
@@ -153,18 +155,34 @@ export function CandidatesTable({
       id: "stock",
       head: i18n.t("In stock"),
       kind: "figure",
-      cell: ({ stock, batteryMin, batteryLasts }) => (
-        <span className="two-lines">
-          {stock ?? "–"}
-          {batteryMin !== null && (
-            <span className={batteryLasts === false ? "is-fault" : "beneath"}>
-              {i18n.t("battery {time}", { time: formatDuration(batteryMin, locale) })}
-            </span>
-          )}
-        </span>
-      ),
+      cell: ({ stock }) => stock ?? "–",
     },
   ];
+  if (candidates.some(({ batteryMin }) => batteryMin !== null))
+    columns.push({
+      id: "battery",
+      head: i18n.t("Battery"),
+      kind: "right",
+      cell: ({ batteryMin, batteryLasts }) =>
+        batteryMin === null ? (
+          "–"
+        ) : (
+          <span className={batteryLasts === false ? "is-fault" : undefined}>
+            {formatDuration(batteryMin, locale)}
+          </span>
+        ),
+    });
+  if (pickWord !== undefined)
+    columns.push({
+      id: "pick",
+      head: <span className="sr-only">{pickWord}</span>,
+      kind: "right",
+      cell: (row) => (
+        <Button aria-label={pickLabel?.(row.name)} onClick={() => onPick?.(row)}>
+          {pickWord}
+        </Button>
+      ),
+    });
   return (
     <>
       <div className="candidates">

@@ -22,7 +22,7 @@ import { useOneAtATime } from "../../lib/one-at-a-time";
 import { DESK_METHODS, FitFields, factsOf, numbersIn } from "./fit-fields";
 import { showFitIssuesOn } from "./fit-issues";
 import { FitRatingLine } from "./fit-rating-line";
-import { exclusionWord, fitMethodWord } from "./fit-words";
+import { exclusionWord, fitMethodWord, judgedDb } from "./fit-words";
 import { METHOD_SD_DB } from "./method-sd";
 import { useRecordFitTest } from "./queries";
 import { TrialCells } from "./trial-cells";
@@ -115,8 +115,8 @@ export function FitForm({
       candidate.excludedBy
         ? exclusionWord(i18n, candidate.excludedBy)
         : candidate.word && protectorWordText(i18n, candidate.word),
-      candidate.wornDb !== null &&
-        i18n.t("{level} at the ear", { level: formatLevel(candidate.wornDb, locale) }),
+      judgedDb(candidate) !== null &&
+        i18n.t("{level} at the ear", { level: formatLevel(judgedDb(candidate), locale) }),
     ]
       .filter(Boolean)
       .join(", ");

@@ -22,14 +22,11 @@ import {
 export function FitTestsTable({
   hidesWorker = false,
   actions,
-  labelLess7Of,
   ...table
 }: {
   hidesWorker?: boolean;
   /** What else can be done with a row. */
   actions?: (test: FitTestView) => ReactNode;
-  /** A model’s US number less 7, which stands beside its PAR where Appendix B governs, dB. */
-  labelLess7Of?: (modelId: string) => number | null;
 } & Pick<
   DataTableProps<FitTestView>,
   "rows" | "state" | "error" | "onRetry" | "more" | "empty" | "isSelected"
@@ -105,7 +102,7 @@ export function FitTestsTable({
           <span className="beneath">
             {notRatedWord(i18n, test) ?? i18n.t("at {pct} %", { pct: test.confidencePct })}
           </span>
-          <Less7 db={test.parDb === null ? null : (labelLess7Of?.(test.modelId) ?? null)} />
+          <Less7 db={test.parDb === null ? null : test.labelLess7Db} />
         </span>
       ),
     },

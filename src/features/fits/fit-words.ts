@@ -132,6 +132,39 @@ export function decidedWord(i18n: I18n, decidedBy: Candidate["decidedBy"]): stri
   }
 }
 
+/** Who would wear them, as far as an active part may count. */
+export interface ActiveCredit {
+  readonly siteCredits: boolean;
+  /** On how many of those who would wear it its active part has passed the check, and how many they are; null: one worker. */
+  readonly checkedOf: (modelId: string) => { checked: number; all: number } | null;
+}
+
+/** Of an active protector, which of its two figures it was judged by, and why; null: it has only one. */
+export function judgedByWord(
+  i18n: I18n,
+  { modelId, wornActiveDb, isActiveCredited, twaDb }: Candidate,
+  { siteCredits, checkedOf }: ActiveCredit,
+): string | null {
+  if (wornActiveDb === null) return null;
+  const group = checkedOf(modelId);
+  if (isActiveCredited)
+    return group === null
+      ? i18n.t("judged with the active part on: its check is passed")
+      : i18n.t("judged with the active part on: its check is passed on all of them");
+  if (twaDb !== null) return i18n.t("judged with the active part off: the rule’s word is of that");
+  if (!siteCredits) return i18n.t("judged with the active part off: no credit at this site");
+  return group === null
+    ? i18n.t("judged with the active part off: no passed check on record")
+    : i18n.t("judged with the active part off: its check is passed on {checked} of {all}", {
+        checked: group.checked,
+        all: group.all,
+      });
+}
+
+/** The level that a candidate's word is about: the shift's where the rule judges that, else while worn in a task. */
+export const judgedDb = ({ twaDb, wornDb, wornActiveDb, isActiveCredited }: Candidate) =>
+  twaDb ?? (isActiveCredited ? wornActiveDb : wornDb);
+
 /** Why no need is stated, or what it rests on. */
 export function needReasonText(i18n: I18n, reason: string | null): string | null {
   switch (reason) {

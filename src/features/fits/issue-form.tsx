@@ -1,9 +1,15 @@
 import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
+import { useMemo } from "react";
 import { useController } from "react-hook-form";
 import { z } from "zod";
 import { Reason } from "../../../shared/schemas/common";
-import type { FitTestView, FittingDesk, IssueView } from "../../../shared/schemas/fit";
+import {
+  type FitTestView,
+  type FittingDesk,
+  type IssueView,
+  reasonAskedFor,
+} from "../../../shared/schemas/fit";
 import { Button } from "../../components/button";
 import {
   CheckField,
@@ -35,6 +41,30 @@ const IssueFields = z.object({
     .pipe(Reason.nullable()),
   issuedOn: z.iso.date(),
 });
+
+/** What is laid out decides whether a reason is asked for: said before it is sent. */
+const fieldsAt = ({ candidates }: FittingDesk, deviceId: string) =>
+  IssueFields.check((context) => {
+    const { offeredModelIds, reason } = context.value;
+    const asked = askedFor(candidates, deviceId, offeredModelIds);
+    if (reason === null && asked !== null)
+      context.issues.push({
+        code: "custom",
+        input: reason,
+        path: ["reason"],
+        params: { code: asked },
+      });
+  });
+
+const askedFor = (
+  candidates: FittingDesk["candidates"],
+  deviceId: string,
+  offeredModelIds: readonly string[],
+) =>
+  reasonAskedFor(
+    candidates.flatMap(({ modelId, kind }) => (offeredModelIds.includes(modelId) ? [kind] : [])),
+    candidates.find(({ modelId }) => modelId === deviceId)?.stock ?? null,
+  );
 
 const EVERYWHERE = "everywhere";
 
@@ -70,7 +100,8 @@ export function IssueForm({
   const tried = desk.tests
     .filter(({ isVoid, testedOn }) => !isVoid && testedOn === today)
     .map(({ modelId }) => modelId);
-  const form = useSchemaForm(IssueFields, {
+  const fields = useMemo(() => fieldsAt(desk, device.modelId), [desk, device.modelId]);
+  const form = useSchemaForm(fields, {
     mode: "onSubmit",
     keepAs: `issue ${device.modelId}`,
     defaultValues: {
@@ -83,12 +114,8 @@ export function IssueForm({
     },
   });
   const offered = form.watch("offeredModelIds");
-  const kinds = new Set(
-    desk.candidates.filter(({ modelId }) => offered.includes(modelId)).map(({ kind }) => kind),
-  );
-  const isOneKind = kinds.size < 2;
+  const asked = askedFor(desk.candidates, device.modelId, offered);
   const stock = candidate?.stock ?? null;
-  const asksWhy = isOneKind || (stock !== null && stock < 1);
   // The server counts the stock by size; once it has asked, the field stays for what is typed.
   const hasAsked = form.formState.errors.reason !== undefined || form.watch("reason") !== "";
   const uses = [
@@ -149,14 +176,14 @@ export function IssueForm({
         label={i18n.t("Receipt")}
         text={i18n.t("The worker says that it was received, free of charge")}
       />
-      {(asksWhy || hasAsked) && (
+      {(asked !== null || hasAsked) && (
         <TextAreaField
           form={form}
           name="reason"
           label={i18n.t("All the same, because")}
           rows={2}
           note={
-            isOneKind
+            asked === "one-kind-offered"
               ? i18n.t("Only one kind is on offer. Only officers read this.")
               : i18n.t("None is in stock. Only officers read this.")
           }

@@ -5,6 +5,7 @@ import { formatLevel, formatUncertainty } from "../../../shared/format/level";
 import { formatNumber } from "../../../shared/format/number";
 import { withoutStop } from "../../../shared/format/words";
 import type { BudgetView, GroupBudgetView } from "../../../shared/schemas/group";
+import { noBudgetWords, sourceWord } from "../../../shared/surveys/words";
 import { DataTable } from "../../components/data-table";
 import { ShareBar } from "../../components/share-bar";
 import { useLocale } from "../../lib/i18n";
@@ -18,43 +19,6 @@ const SMALL_SHARE_PCT = 1;
 const MOST_NARROWINGS = 3;
 /** A change that narrows U by less is not worth the measuring. */
 const WORTH_NAMING_DB = 0.05;
-
-function sourceWord(i18n: I18n, source: Item["source"]): string {
-  switch (source) {
-    case "sampling":
-      return i18n.t("sampling");
-    case "duration":
-      return i18n.t("duration");
-    case "instrument":
-      return i18n.t("instrument");
-    case "position":
-      return i18n.t("microphone position");
-  }
-}
-
-/** Why there is no uncertainty, with the tasks that lack what it takes. */
-export function noBudgetWords(i18n: I18n, reason: string, tasks: string): string {
-  switch (reason) {
-    case "no-tasks":
-      return i18n.t("The nominal day names no task.");
-    case "mixed-strategies":
-      return i18n.t(
-        "Its levels were measured by different strategies, and the standard has no sum for that.",
-      );
-    case "not-an-energy-level":
-      return i18n.t("No energy level: {tasks}. A 5 dB average has no uncertainty by ISO 9612.", {
-        tasks,
-      });
-    case "too-few-samples":
-      return tasks === ""
-        ? i18n.t("Too few samples: three at least.")
-        : i18n.t("Too few samples: {tasks}.", { tasks });
-    default:
-      return tasks === ""
-        ? i18n.t("Nobody has said what it was measured with.")
-        : i18n.t("Nobody has said what it was measured with: {tasks}.", { tasks });
-  }
-}
 
 /** "3 more samples of Grinding", "a class 1 instrument". */
 export function changeWords(

@@ -89,10 +89,13 @@ const OwnSaid = lazy(() => import("./own-said").then(({ OwnSaid }) => ({ default
 export function LastShift({
   day,
   workerId,
+  askedFor,
   today,
 }: {
   day: OwnDay | null;
   workerId: string;
+  /** The date for which the head of the page asks how long the protector was worn. */
+  askedFor: string | undefined;
   today: string;
 }) {
   const { i18n } = useLingui();
@@ -119,6 +122,7 @@ export function LastShift({
             workerId={workerId}
             lastDate={day.date}
             hasFigure={day.atEarDb !== null}
+            askedFor={askedFor}
             today={today}
           />
         </Suspense>

@@ -1,4 +1,5 @@
 import type { I18n } from "@lingui/core";
+import { hasToPass } from "../../../shared/acoustics/protection/fit-rating";
 import { formatDate } from "../../../shared/format/date";
 import type { Locale } from "../../../shared/i18n/index";
 import type { FitTestView } from "../../../shared/schemas/fit";
@@ -21,10 +22,24 @@ export function fitOfOwn(
   );
 }
 
+/** Nothing had to come off: then it neither passed nor failed, whatever an old test has stored. */
+const hasNothingToPass = ({ needDb }: FitTestView): boolean =>
+  needDb !== null && !hasToPass(needDb);
+
+export const isOwnFault = (test: FitTestView | null): boolean =>
+  test !== null && test.hasPassed === false && !hasNothingToPass(test);
+
 /** Whether it fits, in plain words. */
 export function ownFitSentence(i18n: I18n, locale: Locale, test: FitTestView | null): string {
   if (test === null) return i18n.t("Nobody has tested yet whether it fits you.");
   const date = formatDate(test.testedOn, locale);
+  if (hasNothingToPass(test))
+    return i18n.t(
+      "Tested on you on {date}. Your noise asks nothing of it, so there is nothing to pass.",
+      {
+        date,
+      },
+    );
   if (test.hasPassed === null) return i18n.t("Tested on you on {date}.", { date });
   return test.hasPassed
     ? i18n.t("Fits you, tested on {date}.", { date })

@@ -5,7 +5,7 @@ import { Button } from "../../components/button";
 import { useLocale } from "../../lib/i18n";
 import { problemText } from "../../lib/problem-text";
 import { useAcknowledgeOwn } from "./changes";
-import { fitOfOwn, ownFitSentence } from "./own-fit";
+import { fitOfOwn, isOwnFault, ownFitSentence } from "./own-fit";
 import type { OwnProtector } from "./own-protectors";
 import { ownQueries } from "./queries";
 
@@ -17,7 +17,7 @@ export function OwnFit({ workerId, protector }: { workerId: string; protector: O
   if (!data) return <>&nbsp;</>;
   const test = fitOfOwn(data, protector);
   const sentence = ownFitSentence(i18n, locale, test);
-  return test?.hasPassed === false ? <b className="is-fault">{sentence}</b> : sentence;
+  return isOwnFault(test) ? <b className="is-fault">{sentence}</b> : sentence;
 }
 
 /** Devices that were handed out and not said to be received yet, each with the one thing to do. */

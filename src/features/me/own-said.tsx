@@ -1,6 +1,7 @@
 import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { formatDate } from "../../../shared/format/date";
+import { withinSentence } from "../../../shared/format/words";
 import { addDays } from "../../../shared/time/zone";
 import { TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
@@ -16,12 +17,15 @@ export function OwnSaid({
   workerId,
   lastDate,
   hasFigure,
+  askedFor,
   today,
 }: {
   workerId: string;
   lastDate: string;
   /** Whether a level at the ear stands above for the last shift. */
   hasFigure: boolean;
+  /** The date for which the head of the page asks it already: its way is not offered twice. */
+  askedFor: string | undefined;
   today: string;
 }) {
   const { i18n } = useLingui();
@@ -38,6 +42,7 @@ export function OwnSaid({
     const said = rows.filter((one) => one.date === date);
     const day = formatDate(date, locale);
     const to = `${paths.myDay(date)}#${OWN_REPORT}`;
+    if (said.length === 0 && date === askedFor) return null;
     if (said.length === 0)
       return reports.isPending ? (
         <p key={date} className="me-note">
@@ -60,8 +65,17 @@ export function OwnSaid({
           <p>{i18n.t("You said you did not wear it all the time: with that it would be more.")}</p>
         )}
         <p>
-          {i18n.t("Worn on {day}, as you said:", { day })}{" "}
-          {said.map((one) => `${one.taskName}: ${saidWords(i18n, one)}`).join("; ")}.
+          {i18n.t("Worn on {day}, as you said: {said}.", {
+            day,
+            said: said
+              .map((one) =>
+                i18n.t("{often} in {task}", {
+                  often: withinSentence(saidWords(i18n, one), locale),
+                  task: one.taskName,
+                }),
+              )
+              .join("; "),
+          })}
         </p>
         {beside && <p className="me-note">{beside}</p>}
         <TextLink className="me-list-link" to={to}>

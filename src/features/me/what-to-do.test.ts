@@ -176,6 +176,11 @@ describe("what to do", () => {
     const asksOver = say(day(), [protector()], [over]);
     expect(say(day(), [protector(), given("Grinding")], [over])).toEqual(asksOver);
     expect(say(day(), [protector({ fromDate: "2026-12-01" })], [over])).not.toContain(asksOver[0]);
+    // Until a day with what was given since says otherwise.
+    const since = (verdictAtEar: OwnDay["verdictAtEar"]) =>
+      say(day({ date: "2026-12-01", verdictAtEar }), [protector(), given("Grinding")], [over]);
+    expect(since("under")).not.toContain(asksOver[0]);
+    expect(since("cant-tell-yet")).toEqual(asksOver);
   });
 
   test("a fit is told of what is worn, and not of what was only tried", () => {
@@ -257,6 +262,7 @@ describe("whether it fits, in a sentence", () => {
     parDb: 22,
     hasPassed: true,
     activePassed: null,
+    labelLess7Db: null,
     outcome: "issued",
     dueOn: null,
     isVoid: false,
@@ -276,5 +282,10 @@ describe("whether it fits, in a sentence", () => {
     expect(say([testOf({ needDb: null, hasPassed: null })])).toBe(
       "Tested on you on 12 October 2026.",
     );
+    // Stored before a test with nothing to pass was kept from passing or failing.
+    for (const hasPassed of [true, false])
+      expect(say([testOf({ needDb: -3, hasPassed })])).toBe(
+        "Tested on you on 12 October 2026. Your noise asks nothing of it, so there is nothing to pass.",
+      );
   });
 });

@@ -46,14 +46,20 @@ function wornIn(protectors: readonly OwnProtector[], taskName: string): OwnProte
 /**
  * What the open findings ask of the worker, most serious first, one for whatever is put right by what is worn. A finding
  * that others have done their part for asks for nothing, nor does one about a protector once another was given for the
- * task that it is about; where it is about the whole day, once nothing of before is worn any more.
+ * task that it is about; where it is about the whole day, once nothing of before is worn any more, or once a day with what
+ * was given since lay under the limit.
  */
 function asked({ findings, protectors, lastDay }: Known): OwnFinding[] {
   const isAnswered = ({ kind, lastDate, facts }: OwnFinding) => {
     if (!ABOUT_PROTECTOR.has(kind)) return false;
     const taskName = textOf(facts, "taskName");
     const concerned = taskName === null ? protectors : wornIn(protectors, taskName);
-    return concerned.length > 0 && concerned.every(({ fromDate }) => fromDate > lastDate);
+    const isGivenSince = ({ fromDate }: OwnProtector) => fromDate > lastDate;
+    const isUnderSince =
+      taskName === null &&
+      lastDay?.verdictAtEar === "under" &&
+      concerned.some((one) => isGivenSince(one) && one.fromDate <= lastDay.date);
+    return concerned.length > 0 && (isUnderSince || concerned.every(isGivenSince));
   };
   // What was only tried, or is worn no longer, asks for nothing.
   const isWorn = ({ kind, useKey }: OwnFinding) =>

@@ -9,6 +9,7 @@ import type { ResultView } from "../../../shared/schemas/result";
 import { TextButton, TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
 import { paths } from "../../paths";
+import { otherResultWords } from "./earlier-words";
 
 /** In the margin of a working's head: which it is, by which versions, what was found, what stood before. */
 export function ResultFacts({
@@ -63,6 +64,7 @@ export function ResultFacts({
               ? i18n.t("The result that stands now")
               : i18n.t("Earlier result, {at}", { at: at(one.id) })}
           </TextLink>
+          : {otherResultWords(i18n, one, result)}
         </p>
       ))}
       {result.findings.length > 0 && (

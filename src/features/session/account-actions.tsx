@@ -9,6 +9,12 @@ import { countUnsent } from "../../lib/kept-list";
 import { paths } from "../../paths";
 import { keepLanguage, sessionQuery, signOut } from "./session";
 
+/** A choice of one's own, kept with the account. */
+export function OwnLanguage() {
+  return <LangSwitch onChosen={(locale) => void keepLanguage(locale)} />;
+}
+
+/** The account and the way out. */
 export function AccountActions() {
   const { i18n } = useLingui();
   const { data } = useQuery(sessionQuery);
@@ -25,7 +31,6 @@ export function AccountActions() {
 
   return (
     <>
-      <LangSwitch onChosen={(locale) => void keepLanguage(locale)} />
       <TextLink to={paths.account}>{i18n.t("My account")}</TextLink>
       <TextButton onClick={ask}>{i18n.t("Sign out")}</TextButton>
       <Dialog

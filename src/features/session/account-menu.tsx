@@ -1,7 +1,7 @@
 import { useLingui } from "@lingui/react";
 import { type ReactNode, useEffect, useRef, useState } from "react";
 import { chooseTheme, readTheme, type Theme } from "../../lib/theme";
-import { AccountActions } from "./account-actions";
+import { AccountActions, OwnLanguage } from "./account-actions";
 
 /** A menu that closes as soon as somebody goes on elsewhere, or presses Escape in it. */
 function useCloseElsewhere() {
@@ -62,6 +62,7 @@ export function AccountMenu({ children }: { children: ReactNode }) {
             </label>
           ))}
         </fieldset>
+        <OwnLanguage />
         <AccountActions />
       </div>
     </details>

@@ -37,6 +37,7 @@ function useActText(): (words: ActWords) => string {
       });
     const name = isolate(words.workerName);
     if (words.kind === "mark-done") return i18n.t("Mark done: {name}", { name });
+    if (words.kind === "undo") return i18n.t("Undo: {name}", { name });
     return words.kind === "cannot"
       ? i18n.t("Can’t, because: {text} ({name})", { text: words.text, name })
       : i18n.t("Question: {text} ({name})", { text: words.text, name });
@@ -165,7 +166,7 @@ function UnsentAct({
           <Button size="supervisor" onClick={() => acts.drop(act.key)}>
             {i18n.t("Drop mine")}
           </Button>
-          {stands && stands.state !== "closed" && (
+          {stands && stands.state !== "closed" && act.words.kind !== "undo" && (
             <Button
               size="supervisor"
               onClick={() => {

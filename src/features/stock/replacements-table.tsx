@@ -13,6 +13,7 @@ import { useOneAtATime } from "../../lib/one-at-a-time";
 import { paths } from "../../paths";
 import { type Replacement, useChangeParts } from "./queries";
 import { partWord } from "./stock-words";
+import { useFolded } from "./use-folded";
 
 const keyOf = ({ issueId, part }: Replacement) => `${issueId} ${part}`;
 
@@ -33,6 +34,7 @@ export function ReplacementsTable({
   const { begin, end } = useOneAtATime();
   // What was lost on the way goes again under its own key.
   const keys = useRef(new Map<string, string>());
+  const folded = useFolded(table.rows);
 
   function enter(row: Replacement) {
     if (!begin()) return;
@@ -150,14 +152,17 @@ export function ReplacementsTable({
         <Status>{said}</Status>
       </p>
       <ProblemIssues error={change.error} />
-      <DataTable<Replacement>
-        {...table}
-        caption={i18n.t("Cushions and tips due, the longest overdue first")}
-        rowKey={keyOf}
-        columns={columns}
-        isTwoLine
-        stacksOnPhone
-      />
+      <div className="stock-due">
+        <DataTable<Replacement>
+          {...table}
+          {...folded}
+          caption={i18n.t("Cushions and tips due, the longest overdue first")}
+          rowKey={keyOf}
+          columns={columns}
+          isTwoLine
+          stacksOnPhone
+        />
+      </div>
     </>
   );
 }

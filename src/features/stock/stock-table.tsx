@@ -6,7 +6,8 @@ import { type DataColumn, DataTable, type DataTableProps } from "../../component
 import { TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
 import { paths } from "../../paths";
-import { partWord, shortWord } from "./stock-words";
+import { isShort, partWord, shortWord } from "./stock-words";
+import { useFolded } from "./use-folded";
 
 /** What is there, by site, model, part and size. */
 export function StockTable({
@@ -50,23 +51,30 @@ export function StockTable({
       head: i18n.t("With workers"),
       kind: "right",
       cell: ({ part, issuedCount }) =>
-        part === "device" ? formatNumber(issuedCount, 0, locale) : "",
+        part === "device" ? formatNumber(issuedCount, 0, locale) : "–",
     },
     {
       id: "moved",
       head: i18n.t("Last moved"),
       kind: "right",
+      hidesOnPhone: true,
       cell: ({ lastMovedOn }) => formatShortDate(lastMovedOn, locale),
     },
   ];
+  const folded = useFolded(table.rows, isShort);
   return (
-    <DataTable<StockRow>
-      {...table}
-      caption={i18n.t("What is in stock")}
-      rowKey={({ siteId, modelId, part, size }) => `${siteId} ${modelId} ${part} ${size}`}
-      groupOf={showsSite ? ({ siteId, siteName }) => ({ key: siteId, label: siteName }) : undefined}
-      columns={columns}
-      stacksOnPhone
-    />
+    <div className="stock-there">
+      <DataTable<StockRow>
+        {...table}
+        {...folded}
+        caption={i18n.t("What is in stock")}
+        rowKey={({ siteId, modelId, part, size }) => `${siteId} ${modelId} ${part} ${size}`}
+        groupOf={
+          showsSite ? ({ siteId, siteName }) => ({ key: siteId, label: siteName }) : undefined
+        }
+        columns={columns}
+        stacksOnPhone
+      />
+    </div>
   );
 }

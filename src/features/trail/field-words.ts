@@ -52,6 +52,7 @@ const WORDS: Readonly<Record<string, (i18n: I18n) => string>> = {
   toDate: (i18n) => i18n.t("To"),
   effectiveFrom: (i18n) => i18n.t("Holds from"),
   expiresAt: (i18n) => i18n.t("Good until"),
+  hour: (i18n) => i18n.t("Hour"),
   dates: (i18n) => i18n.t("Dates"),
   joiners: (i18n) => i18n.t("Joined"),
   leavers: (i18n) => i18n.t("Have left"),

@@ -32,6 +32,7 @@ export const SUBJECT_KINDS = [
   "timetable",
   "group-mapping",
   "draw",
+  "hand-over",
 ] as const;
 export type SubjectKind = (typeof SUBJECT_KINDS)[number];
 
@@ -46,6 +47,8 @@ export function subjectWord(i18n: I18n, kind: string): string {
       return i18n.t("Site");
     case "group-mapping":
       return i18n.t("Role by group");
+    case "hand-over":
+      return i18n.t("Hand-over");
     case "draw":
       return i18n.t("Drawn records");
     case "worker":
@@ -110,6 +113,18 @@ export function actionWord(i18n: I18n, action: string): string {
   switch (action) {
     case "add-crew-member":
       return i18n.t("Member put in");
+    case "mark-absent":
+      return i18n.t("Marked as not in");
+    case "end-absence":
+      return i18n.t("Last day not in");
+    case "strike-absence":
+      return i18n.t("In after all");
+    case "lend-worker":
+      return i18n.t("Lent to another crew");
+    case "end-loan":
+      return i18n.t("Last day of a loan");
+    case "take-back-loan":
+      return i18n.t("Loan taken back");
     case "add-crew-supervisor":
       return i18n.t("Supervisor put in");
     case "end-crew-membership":
@@ -299,10 +314,22 @@ export function actionWord(i18n: I18n, action: string): string {
       return i18n.t("Marked done");
     case "cannot-finding":
       return i18n.t("Can’t, because…");
+    case "undo-finding":
+      return i18n.t("Undone");
     case "reopen-finding":
       return i18n.t("Reopened");
     case "close-finding":
       return i18n.t("Closed");
+    case "export-year-workbook":
+      return i18n.t("Year taken as a workbook");
+    case "issue-year-report":
+      return i18n.t("Report of the year issued");
+    case "choose-digest":
+      return i18n.t("Hour of the daily mail chosen");
+    case "give-hand-over":
+      return i18n.t("Handed over to the next in charge");
+    case "receive-hand-over":
+      return i18n.t("Hand-over read");
     case "draw-records":
       return i18n.t("Records drawn at random");
     case "mark-drawn-record":

@@ -1,6 +1,7 @@
 import { queryOptions } from "@tanstack/react-query";
 import type { z } from "zod";
 import type { Locale } from "../../../shared/i18n";
+import type { YearReportPage } from "../../../shared/schemas/report";
 import type { GapKind, GapNames, GapsView } from "../../../shared/schemas/waiting";
 import { ApiError, api } from "../../lib/api";
 import { ownReply } from "../../lib/own-reply";
@@ -26,6 +27,17 @@ export const yearFileQueries = {
         api.get("/exports/gaps", {
           query: { siteId, year },
           schema: ownReply<GapsView>("counts", "months"),
+          signal,
+        }),
+    }),
+  /** Reports issued of the year, the latest first. */
+  reports: ({ siteId, year }: YearOfSite) =>
+    queryOptions({
+      queryKey: ["year-file", "reports", siteId, year],
+      queryFn: ({ signal }) =>
+        api.get("/year-reports", {
+          query: { siteId, year },
+          schema: ownReply<z.infer<typeof YearReportPage>>("rows", "can"),
           signal,
         }),
     }),
@@ -64,7 +76,7 @@ export type WorkersAs = (typeof WORKERS_AS)[number];
 export function yearFileAddress(
   { siteId, year }: YearOfSite,
   workers: WorkersAs,
-  ending: "csv" | "zip" = "csv",
+  ending: "csv" | "zip" | "xlsx" = "csv",
 ): string {
   return `/api/exports/year.${ending}?${new URLSearchParams({ siteId, year: String(year), workers })}`;
 }
@@ -77,6 +89,11 @@ export function downloadYear(year: YearOfSite, workers: WorkersAs, language: Loc
 /** The same for the ZIP with all records, which brings its own dictionary. */
 export function downloadRecords(year: YearOfSite, workers: WorkersAs): void {
   download([yearFileAddress(year, workers, "zip")]);
+}
+
+/** The same as a workbook, a sheet for each table. */
+export function downloadWorkbook(year: YearOfSite, workers: WorkersAs): void {
+  download([yearFileAddress(year, workers, "xlsx")]);
 }
 
 function download(addresses: readonly string[]): void {

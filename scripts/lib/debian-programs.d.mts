@@ -1,0 +1,1 @@
+export function ensureProgram(program: string, packageName: string): Promise<string>;

@@ -1,0 +1,125 @@
+import type { DaySummary } from "../../shared/day/summarize-day";
+import type { GivingPreview } from "../../shared/schemas/choice";
+import type { AssignmentInput } from "../../shared/schemas/worker";
+import { todayAt } from "../lib/calendar";
+import { rows } from "../lib/db";
+import { groupBy } from "../lib/group-by";
+import type { Actor } from "../lib/policy";
+import type { Worker } from "../models/worker";
+import { type Expected, expectedDays } from "../queries/expected-days";
+import { settingsInForce } from "../queries/site-settings";
+import { assignToMany, type Paths } from "./assign-protector";
+import { previewChange } from "./preview-change";
+
+type UsualDay = GivingPreview["changes"][number]["before"];
+
+const VERDICTS: readonly UsualDay["verdictAtEar"][] = [
+  "over",
+  "cant-tell-yet",
+  "not-assessed",
+  "under",
+];
+const WORDS: readonly UsualDay["word"][] = [
+  "too-little",
+  null,
+  "too-much",
+  "just-enough",
+  "strong-side",
+  "good",
+  "enough",
+];
+const byGravity = (a: UsualDay, b: UsualDay) =>
+  VERDICTS.indexOf(a.verdictAtEar) - VERDICTS.indexOf(b.verdictAtEar) ||
+  WORDS.indexOf(a.word) - WORDS.indexOf(b.word) ||
+  (b.atEarDb ?? 0) - (a.atEarDb ?? 0);
+
+/**
+ * Who would change verdict if these workers were given a protector: it is given, their usual days and those on record are
+ * computed as they then are, and it is taken back. So the preview can't differ from the giving.
+ *
+ * @throws AppError as assignToMany; not-computed, where a site has no rules on the first day
+ */
+export async function previewGiving(
+  actor: Actor,
+  workers: readonly Worker[],
+  input: AssignmentInput,
+  paths: Paths,
+): Promise<GivingPreview> {
+  const before = await usualDays(workers, input.fromDate);
+  let after = before;
+  let alreadyHad: readonly string[] = [];
+  const recorded = await previewChange(
+    actor,
+    { workerIds: workers.map(({ id }) => id), fromDate: input.fromDate },
+    async () => {
+      alreadyHad = (await assignToMany(actor, workers, input, paths)).alreadyHad;
+      after = await usualDays(workers, input.fromDate);
+    },
+  );
+  const changes = workers.flatMap(({ id, name }) => {
+    const [was, becomes] = [before.get(id), after.get(id)];
+    if (!was || !becomes) return [];
+    if (was.verdictAtEar === becomes.verdictAtEar && was.word === becomes.word) return [];
+    return [{ workerId: id, workerName: name, before: toView(was), after: toView(becomes) }];
+  });
+  const given = workers.filter(({ id }) => !alreadyHad.includes(id));
+  return {
+    changes: changes.sort(
+      (a, b) => byGravity(a.after, b.after) || a.workerName.localeCompare(b.workerName),
+    ),
+    daysCount: after.size,
+    withoutDayCount: workers.length - after.size,
+    recorded,
+    stock: await stockFor(
+      given.map(({ id }) => id),
+      [input.innerModelId, input.outerModelId].filter((id) => id !== null),
+    ),
+  };
+}
+
+const toView = ({ verdictAtEar, word, atEarDb }: DaySummary): UsualDay => ({
+  verdictAtEar,
+  word,
+  atEarDb,
+});
+
+/** The nominal days as they are expected from the first day on, or today where that is past. */
+async function usualDays(
+  workers: readonly Worker[],
+  fromDate: string,
+): Promise<Map<string, DaySummary>> {
+  const found = await rows<Expected & { siteId: string; timeZone: string }>(
+    `SELECT w.id, w.site_id AS "siteId", s.time_zone AS "timeZone", w.must_wear AS "mustWear", w.personal_target_db AS "personalTargetDb",
+       coalesce((SELECT json_agg(json_build_object('taskId', j.task_id, 'durationMin', j.duration_min) ORDER BY j.position)
+                 FROM job_tasks j WHERE j.job_id = w.job_id), '[]') AS nominal,
+       coalesce((SELECT c.usual_length_min FROM crew_memberships m JOIN crews c ON c.id = m.crew_id WHERE m.worker_id = w.id
+          AND m.valid @> CAST(:fromDate AS date) ORDER BY m.is_loan, lower(m.valid) DESC LIMIT 1), 0) AS "usualLengthMin"
+     FROM workers w JOIN sites s ON s.id = w.site_id WHERE w.id = ANY (CAST(:ids AS uuid[]))`,
+    { ids: `{${workers.map(({ id }) => id).join(",")}}`, fromDate },
+  );
+  const days = new Map<string, DaySummary>();
+  for (const [siteId, people] of groupBy(found, (worker) => worker.siteId)) {
+    const today = todayAt(people[0]!.timeZone);
+    const date = fromDate > today ? fromDate : today;
+    const settings = await settingsInForce(siteId, date);
+    for (const [id, summary] of await expectedDays(siteId, date, people, settings))
+      days.set(id, summary);
+  }
+  return days;
+}
+
+/** Who would need a device from the shelf, by site and model. */
+function stockFor(
+  workerIds: readonly string[],
+  modelIds: readonly string[],
+): Promise<GivingPreview["stock"]> {
+  return rows(
+    `SELECT s.name AS "siteName", m.id AS "modelId", m.name AS "modelName", count(*)::int AS "neededCount",
+       (SELECT sum(k.quantity)::int FROM stock_moves k WHERE k.site_id = s.id AND k.model_id = m.id AND k.part = 'device') AS "stockCount"
+     FROM workers w JOIN sites s ON s.id = w.site_id JOIN protector_models m ON m.id = ANY (CAST(:modelIds AS uuid[]))
+     WHERE w.id = ANY (CAST(:workerIds AS uuid[])) AND NOT EXISTS (SELECT 1 FROM protector_issues i
+       WHERE i.worker_id = w.id AND i.model_id = m.id AND i.ended_on IS NULL)
+     GROUP BY s.id, s.name, m.id, m.name ORDER BY s.name, m.name`,
+    { workerIds: `{${workerIds.join(",")}}`, modelIds: `{${modelIds.join(",")}}` },
+  );
+}

@@ -1,0 +1,77 @@
+import { evaluateDay } from "../../shared/acoustics/day";
+import { buildDayInput, type DayContext } from "../../shared/day/build-day-input";
+import { type DaySummary, summarizeDay } from "../../shared/day/summarize-day";
+import { assignmentsOn, gridTasks, lastWearing, modelsOn } from "./day-grid";
+import type { settingsInForce } from "./site-settings";
+
+/** Somebody of a site, with the nominal day of their job. */
+export interface Expected {
+  readonly id: string;
+  readonly mustWear: boolean;
+  readonly personalTargetDb: number | null;
+  readonly nominal: readonly { taskId: string; durationMin: number }[];
+  /** How long the shift usually is, minutes; a nominal day that is longer is the shift. */
+  readonly usualLengthMin: number;
+}
+
+/**
+ * What these people's nominal days come to on a date by the usual levels of the tasks and what is assigned then, by worker.
+ * Nothing is expected of whoever has no nominal day. A fixed number of statements.
+ */
+export async function expectedDays(
+  siteId: string,
+  date: string,
+  people: readonly Expected[],
+  settings: Awaited<ReturnType<typeof settingsInForce>>,
+): Promise<Map<string, DaySummary>> {
+  const { governing } = settings;
+  const ids = `{${people.map(({ id }) => id).join(",")}}`;
+  const assignments = await assignmentsOn(ids, date);
+  const worn = await lastWearing(ids, date);
+  const models = await modelsOn(
+    [
+      ...new Set(
+        assignments.flatMap(({ innerModelId, outerModelId }) =>
+          outerModelId ? [innerModelId, outerModelId] : [innerModelId],
+        ),
+      ),
+    ],
+    date,
+  );
+  const context: DayContext = {
+    tasks: new Map((await gridTasks(siteId, date)).map((task) => [task.id, task])),
+    models: new Map(models.map((model) => [model.modelId, model])),
+    site: {
+      wearFromDb: settings.wearFromDb,
+      creditsActivePart: settings.creditsActivePart,
+      usesUncertainty: settings.usesUncertainty,
+    },
+  };
+  return new Map(
+    people.flatMap((person): [string, DaySummary][] => {
+      if (person.nominal.length === 0) return [];
+      const tasks = person.nominal.map(({ taskId, durationMin }) => ({
+        taskId,
+        durationMin,
+        wornPct: worn.get(person.id)?.[taskId] ?? null,
+        wornIsShiftWide: false,
+      }));
+      const nominalMin = tasks.reduce((sum, { durationMin }) => sum + durationMin, 0);
+      const shift = {
+        id: "expected",
+        lengthMin: Math.max(person.usualLengthMin, nominalMin),
+        tasks,
+        unaccounted: { how: "like-the-rest" } as const,
+        readings: [],
+      };
+      const input = buildDayInput(
+        person,
+        date,
+        [shift],
+        assignments.filter(({ workerId }) => workerId === person.id),
+        context,
+      );
+      return [[person.id, summarizeDay(input, evaluateDay(input, governing, []), governing)]];
+    }),
+  );
+}
