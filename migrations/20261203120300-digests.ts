@@ -23,7 +23,7 @@ CREATE TABLE digests (
   user_id uuid NOT NULL,
   site_id uuid NOT NULL,
   date date NOT NULL,
-  state text NOT NULL DEFAULT 'waiting' CHECK (state IN ('waiting', 'nothing', 'sent')),
+  state text NOT NULL DEFAULT 'waiting' CHECK (state IN ('waiting', 'nothing', 'sent', 'refused')),
   subject text,
   body_text text,
   body_html text,

@@ -2,6 +2,7 @@ import type { NextFunction, Request, RequestHandler, Response } from "express";
 import type { TokenScope } from "../../shared/schemas/api-token";
 import { execute, inTransaction, row } from "../lib/db";
 import { AppError } from "../lib/errors";
+import type { Actor } from "../lib/policy";
 import { organizationOfSecret, secretHash } from "../lib/secret";
 import { loadActor } from "./actor";
 import { UnfinishedTries } from "./rate-limit";
@@ -35,14 +36,17 @@ const uses = new UnfinishedTries("token", 1200, 10);
 /** How old the last use has to be to be written anew, minutes. */
 const NOTE_USE_AFTER_MIN = 10;
 
+/** What a refusal of a token has to say beside its status (RFC 6750, 3). */
+const challenge = (request: Request) =>
+  request.res?.setHeader("www-authenticate", 'Bearer realm="Dinward"');
+
 /**
- * Whose token it is, and what it opens: asked at every request, so that it ends with the person, the last role or its own
- * time.
+ * Whose token it is, and what it opens: asked at every request, so that it ends with the person or its own time.
  *
  * @throws AppError token-unknown, token-over, token-person-gone, too-many-tries
  */
 export async function findToken(token: string, request: Request): Promise<TokenHolder> {
-  request.res?.setHeader("www-authenticate", 'Bearer realm="Dinward"');
+  challenge(request);
   const unknown = async (): Promise<never> => {
     await guesses.begin(request);
     throw new AppError("token-unknown", 401);
@@ -64,10 +68,6 @@ export async function findToken(token: string, request: Request): Promise<TokenH
     if (!held) return null;
     if (held.isGone) throw new AppError("token-person-gone", 401);
     if (held.isOver) throw new AppError("token-over", 401);
-    // Nothing granted any more: the token has nobody to act for.
-    await loadActor(held.userId, held.epoch).catch((error: unknown) => {
-      throw error instanceof AppError ? new AppError("token-person-gone", 401) : error;
-    });
     if (held.notesUse)
       await execute("UPDATE api_tokens SET last_used_at = now() WHERE id = $1", [held.id]);
     return held;
@@ -76,4 +76,20 @@ export async function findToken(token: string, request: Request): Promise<TokenH
   await uses.begin(request, found.id);
   request.res?.removeHeader("www-authenticate");
   return found;
+}
+
+/**
+ * The person whom a token acts for. With the last grant gone it has nobody to act for.
+ *
+ * @throws AppError token-person-gone
+ */
+export async function loadTokenActor(
+  { userId, epoch }: TokenHolder,
+  request: Request,
+): Promise<Actor> {
+  return loadActor(userId, epoch).catch((error: unknown) => {
+    if (!(error instanceof AppError)) throw error;
+    challenge(request);
+    throw new AppError("token-person-gone", 401);
+  });
 }

@@ -1,24 +1,12 @@
 import { recordAudit } from "../lib/audit";
 import { execute, row, rows } from "../lib/db";
+import { leavesNobodyToAdminister } from "../lib/grants";
 import type { Role } from "../lib/policy";
 
 interface Mapped {
   id: string;
   role: Role;
   siteId: string | null;
-}
-
-/** Whether nobody would be left who administers, without these grants. */
-async function leavesNobody(organizationId: string, lost: readonly Mapped[]): Promise<boolean> {
-  if (!lost.some(({ role }) => role === "administrator")) return false;
-  // Two who lose the role at one moment must not each take the other for the one who stays.
-  await execute("SELECT 1 FROM organizations WHERE id = $1 FOR UPDATE", [organizationId]);
-  const others = await rows(
-    `SELECT 1 AS one FROM role_grants g JOIN users u ON u.id = g.user_id
-     WHERE g.role = 'administrator' AND g.revoked_at IS NULL AND u.revoked_at IS NULL AND NOT (g.id = ANY ($1::uuid[])) LIMIT 1`,
-    [lost.map(({ id }) => id)],
-  );
-  return others.length === 0;
 }
 
 /**
@@ -47,9 +35,12 @@ export async function followGroups(
        SELECT m.organization_id, $1, m.role, m.site_id, m.id FROM group_mappings m WHERE m.id = ANY ($2::uuid[])`,
       [user.id, granted.map(({ id }) => id)],
     );
-  const kept = (await leavesNobody(user.organizationId, lost))
-    ? lost.filter(({ role }) => role === "administrator")
-    : [];
+  const ruling = lost.filter(({ role }) => role === "administrator");
+  const kept =
+    ruling.length > 0 &&
+    (await leavesNobodyToAdminister(user.organizationId, { grantIds: ruling.map(({ id }) => id) }))
+      ? ruling
+      : [];
   const revoked = lost.filter((grant) => !kept.includes(grant));
   if (revoked.length > 0)
     await execute("UPDATE role_grants SET revoked_at = now() WHERE id = ANY ($1::uuid[])", [

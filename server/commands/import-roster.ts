@@ -11,8 +11,9 @@ import { draftRoster, ROSTER_COLUMNS, type RosterEntry } from "../imports/draft-
 import { readCsv } from "../imports/read-csv";
 import { recordAudit, recordAuditMany } from "../lib/audit";
 import { changesBetween } from "../lib/changes";
-import { execute, row } from "../lib/db";
+import { execute } from "../lib/db";
 import { AppError } from "../lib/errors";
+import { leavesNobodyToAdminister } from "../lib/grants";
 import type { Actor } from "../lib/policy";
 import type { Site } from "../models/site";
 
@@ -48,7 +49,11 @@ export async function importRoster(
   const leavers = people.filter(({ what }) => what === "leaves").length;
   const asks: RosterReport["asks"] = [];
   if (leavers * 2 > draft.present && leavers > 1) asks.push("half-leave");
-  if (await isLastAdministratorAmong(entries.filter(({ leaves }) => leaves)))
+  const leaving = entries.filter(({ leaves }) => leaves).map(({ id }) => id);
+  if (
+    leaving.length > 0 &&
+    (await leavesNobodyToAdminister(actor.organizationId, { workerIds: leaving }))
+  )
     asks.push("last-administrator-leaves");
   const report: RosterReport = {
     isDryRun,
@@ -92,16 +97,6 @@ function personOf({ known, facts, changes, leaves, crew }: RosterEntry): RosterP
   if (leaves) return [{ employeeNumber, name, what: "leaves", date: facts.leftOn, changes: all }];
   if (all.length === 0) return [];
   return [{ employeeNumber, name, what: "changes", date: crew?.fromDate ?? null, changes: all }];
-}
-
-async function isLastAdministratorAmong(leaving: readonly Placed[]): Promise<boolean> {
-  if (leaving.length === 0) return false;
-  const found = await row<{ isLast: boolean }>(
-    `SELECT count(*) > 0 AND bool_and(u.worker_id IS NOT NULL AND u.worker_id = ANY (CAST(:ids AS uuid[]))) AS "isLast"
-     FROM role_grants g JOIN users u ON u.id = g.user_id WHERE g.role = 'administrator' AND g.revoked_at IS NULL AND u.revoked_at IS NULL`,
-    { ids: `{${leaving.map(({ id }) => id).join(",")}}` },
-  );
-  return found?.isLast ?? false;
 }
 
 async function store(actor: Actor, site: Site, entries: readonly Placed[]): Promise<void> {

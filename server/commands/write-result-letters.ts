@@ -2,7 +2,7 @@ import { randomUUID } from "node:crypto";
 import { createI18n, isLocale, type Locale } from "../../shared/i18n";
 import { RULE_SETS, ruleSetVersion } from "../../shared/rule-sets";
 import { resultNoticeOf, tellingCriteria } from "../../shared/rule-sets/result-notice";
-import { addDays } from "../../shared/time/zone";
+import { addDays, localDate } from "../../shared/time/zone";
 import { resultsLetter, type ToldDay } from "../emails/results-letter";
 import { recordAuditMany } from "../lib/audit";
 import { execute, rows } from "../lib/db";
@@ -73,6 +73,7 @@ interface Reader {
   employeeNumber: string;
   language: string;
   delayMin: number;
+  timeZone: string;
   userId: string | null;
   isTold: boolean;
 }
@@ -82,7 +83,7 @@ interface Reader {
  * what has become of days that were told before. Where the worker has a mail address a notice takes the letter along;
  * else it waits to be printed. Twice at once, or twice over, writes nothing more.
  */
-export async function writeResultLetters(organizationId: string, today: string): Promise<void> {
+export async function writeResultLetters(organizationId: string, now: Date): Promise<void> {
   await execute("SELECT pg_advisory_xact_lock(hashtextextended('letters:' || $1, 0))", [
     organizationId,
   ]);
@@ -91,7 +92,7 @@ export async function writeResultLetters(organizationId: string, today: string):
      WHERE n.id = t.notice_id AND t.state IN ('waiting', 'held') AND ${DIFFERS}`,
     [CRITERIA],
   );
-  const due = await daysToTell(today);
+  const due = await daysToTell(now);
   if (due.length === 0) return;
   const readers = await readersOf([...new Set(due.map(({ workerId }) => workerId))]);
   const ofWorker = groupBy(due, ({ workerId }) => workerId);
@@ -100,7 +101,7 @@ export async function writeResultLetters(organizationId: string, today: string):
     const days = ofWorker.get(reader.workerId) ?? [];
     const isHurried =
       days.some(({ replacesId }) => replacesId !== null) ||
-      days.some((day) => addDays(dueOn(day), -SPARE_DAYS) <= today);
+      days.some((day) => addDays(dueOn(day), -SPARE_DAYS) <= localDate(now, reader.timeZone));
     if (days.length === 0 || (reader.isTold && !isHurried)) continue;
     // One letter speaks of one rule set: days after a change of rules get their own.
     for (const group of groupBy(days, (day) => `${day.ruleSetKey} ${day.ruleSetVersion}`).values())
@@ -114,26 +115,27 @@ export async function writeResultLetters(organizationId: string, today: string):
 
 const dueOn = ({ date, ruleSetKey }: Due) => addDays(date, resultNoticeOf(ruleSetKey).withinDays);
 
-async function daysToTell(today: string): Promise<Due[]> {
+async function daysToTell(now: Date): Promise<Due[]> {
+  const today = "($2::timestamptz AT TIME ZONE s.time_zone)::date";
   const columns = `d.worker_id AS "workerId", d.date::text AS date, r.id AS "resultId", a.criterion, coalesce(a.is_over, FALSE) AS "isOver", a.level_db AS "levelDb",
     a.dose_pct AS "dosePct", coalesce(a.bound, 'exact') AS bound, coalesce(r.at_ear_counted_db, r.at_ear_db) AS "atEarDb",
     r.governing_rule_set AS "ruleSetKey", r.governing_version AS "ruleSetVersion"`;
   return rows<Due>(
     `WITH ${TOLD}
      SELECT ${columns}, NULL::uuid AS "replacesId", NULL AS "replacedOn" FROM day_results r JOIN days d ON d.current_result_id = r.id AND NOT d.is_stale
-       JOIN ${TELLING("r")} a ON a.is_over
-     WHERE r.grade = 'measured-worker' AND r.origin = 'computed' AND r.date BETWEEN $2::date - ${TOLD_FOR_DAYS} AND $2::date
+       JOIN workers w ON w.id = d.worker_id JOIN sites s ON s.id = w.site_id JOIN ${TELLING("r")} a ON a.is_over
+     WHERE r.grade = 'measured-worker' AND r.origin = 'computed' AND r.date BETWEEN ${today} - ${TOLD_FOR_DAYS} AND ${today}
        AND NOT EXISTS (SELECT 1 FROM told t WHERE t.worker_id = d.worker_id AND t.date = d.date)
      UNION ALL
      SELECT ${columns}, t.letter_id, t.written_on FROM told t ${CURRENT} WHERE ${DIFFERS}
      ORDER BY 1, 2`,
-    [CRITERIA, today],
+    [CRITERIA, now],
   );
 }
 
 async function readersOf(workerIds: readonly string[]): Promise<Reader[]> {
   return rows<Reader>(
-    `SELECT w.id AS "workerId", w.site_id AS "siteId", w.name, w.employee_number AS "employeeNumber", w.language, s.notice_delay_min AS "delayMin",
+    `SELECT w.id AS "workerId", w.site_id AS "siteId", w.name, w.employee_number AS "employeeNumber", w.language, s.notice_delay_min AS "delayMin", s.time_zone AS "timeZone",
        (SELECT u.id FROM users u WHERE u.worker_id = w.id AND u.revoked_at IS NULL AND u.email IS NOT NULL) AS "userId",
        EXISTS (SELECT 1 FROM result_letters l LEFT JOIN notices n ON n.id = l.notice_id WHERE l.worker_id = w.id
          AND n.state IS DISTINCT FROM 'withdrawn' AND l.written_at > now() - interval '${WEEK_DAYS} days') AS "isTold"

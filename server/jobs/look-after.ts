@@ -7,7 +7,6 @@ import { queueNotice } from "../commands/schedule-notices";
 import { queueCheck } from "../commands/start-microphone-check";
 import { queueAnalysis } from "../commands/start-recording";
 import { writeResultLetters } from "../commands/write-result-letters";
-import { todayAt } from "../lib/calendar";
 import { execute, inTransaction, organizationIds, rows, sequelize } from "../lib/db";
 import { fileStore } from "../lib/file-store";
 import { deleteAudioDue } from "./delete-audio";
@@ -47,7 +46,7 @@ export async function lookAfter(): Promise<void> {
       await closeLaidDownFits(organizationId);
       await closeFitDues(organizationId);
       await openFitDues(organizationId);
-      await writeResultLetters(organizationId, todayAt("UTC"));
+      await writeResultLetters(organizationId, new Date());
       await escalateOverdue(organizationId);
       await orderDigests(organizationId, new Date());
       await execute("DELETE FROM idempotency_keys WHERE created_at < now() - interval '30 days'");

@@ -29,6 +29,9 @@ interface DigestRow {
   siteName: string;
 }
 
+/** What a mail is after an attempt; one refused for good is not tried again. */
+const STATES = { sent: "sent", never: "refused", later: "waiting", unknown: "waiting" } as const;
+
 /**
  * Sends one person's mail of a day. A second attempt says word for word what the first said, under the same Message-ID;
  * on a day on which none of the crews works there is no mail.
@@ -47,13 +50,12 @@ export async function sendDigest(
     messageId: `<${digestId}@dinward>`,
     ...claimed.mail,
   });
+  const state = STATES[outcome.kind];
   await inTransaction({ organizationId }, () =>
-    outcome.kind === "sent"
-      ? execute(
-          "UPDATE digests SET state = 'sent', sent_at = now(), last_error = NULL WHERE id = $1",
-          [digestId],
-        )
-      : execute("UPDATE digests SET last_error = $2 WHERE id = $1", [digestId, outcome.error]),
+    execute(
+      "UPDATE digests SET state = $2, sent_at = CASE WHEN $2 = 'sent' THEN now() END, last_error = $3 WHERE id = $1",
+      [digestId, state, outcome.kind === "sent" ? null : outcome.error],
+    ),
   );
   if (outcome.kind === "later" || outcome.kind === "unknown")
     throw new Error(`the mail server did not take the digest: ${outcome.error}`);

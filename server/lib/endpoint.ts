@@ -3,7 +3,7 @@ import type { NextFunction, Request, Response, Router } from "express";
 import type { z } from "zod";
 import type { ReadKind } from "../../shared/schemas/access";
 import { loadActor } from "../auth/actor";
-import { bearerOf, findToken } from "../auth/bearer";
+import { bearerOf, findToken, loadTokenActor } from "../auth/bearer";
 import { recordRead } from "../commands/record-read";
 import { opens } from "../policies/token-scopes";
 import { canonicalJson } from "./audit";
@@ -224,18 +224,20 @@ async function handle(route: Route, request: Request, response: Response): Promi
   }
 }
 
-function signedIn({ session }: Request) {
-  if (!session?.userId || !session.organizationId) throw new AppError("signed-out", 401);
-  const { userId, organizationId, epoch = 0 } = session;
-  return { userId, organizationId, epoch };
-}
-
-/** Whose token it is; one of another scope opens nothing. */
-async function heldBy(token: string, { method, path }: Route, request: Request) {
-  const holder = await findToken(token, request);
-  if (!opens(holder.scopes, `${method.toUpperCase()} ${path}`))
-    throw new AppError("token-scope", 403);
-  return holder;
+/** Who stands behind a session, or behind a token whose scope opens the route. */
+async function whoCalls(token: string | null, { method, path }: Route, request: Request) {
+  if (token !== null) {
+    const holder = await findToken(token, request);
+    if (!opens(holder.scopes, `${method.toUpperCase()} ${path}`))
+      throw new AppError("token-scope", 403);
+    return {
+      organizationId: holder.organizationId,
+      loadCaller: () => loadTokenActor(holder, request),
+    };
+  }
+  const { userId, organizationId, epoch = 0 } = request.session ?? {};
+  if (!userId || !organizationId) throw new AppError("signed-out", 401);
+  return { organizationId, loadCaller: () => loadActor(userId, epoch) };
 }
 
 async function answer(
@@ -269,10 +271,9 @@ async function answer(
     send(response, spec.status ?? 200, await run(null));
     return;
   }
-  const { userId, organizationId, epoch } =
-    token === null ? signedIn(request) : await heldBy(token, route, request);
+  const { organizationId, loadCaller } = await whoCalls(token, route, request);
   const load = async () => {
-    const actor = await loadActor(userId, epoch);
+    const actor = await loadCaller();
     response.locals.language = actor.language;
     return actor;
   };

@@ -1,3 +1,5 @@
+import { execute, row } from "./db";
+
 /** SQL: a grant of the alias counts at this moment. */
 export const inForce = (grant: string): string =>
   `(${grant}.revoked_at IS NULL AND (${grant}.ends_at IS NULL OR ${grant}.ends_at > now()))`;
@@ -6,3 +8,23 @@ export const inForce = (grant: string): string =>
 export const lastEnd = (user: string): string =>
   `(SELECT max(least(x.ends_at, x.revoked_at)) FROM role_grants x
     WHERE x.user_id = ${user}.id AND x.ends_at IS NOT NULL AND least(x.ends_at, x.revoked_at) <= now())`;
+
+/**
+ * Whether nobody would be left who administers without these grants and these workers. Two who lose the role at one moment
+ * wait for each other, so that neither takes the other for the one who stays.
+ */
+export async function leavesNobodyToAdminister(
+  organizationId: string,
+  {
+    grantIds = [],
+    workerIds = [],
+  }: { grantIds?: readonly string[]; workerIds?: readonly string[] },
+): Promise<boolean> {
+  await execute("SELECT 1 FROM organizations WHERE id = $1 FOR NO KEY UPDATE", [organizationId]);
+  const held = await row<{ isLast: boolean }>(
+    `SELECT count(*) > 0 AND bool_and(g.id = ANY (CAST(:grants AS uuid[])) OR coalesce(u.worker_id = ANY (CAST(:workers AS uuid[])), FALSE)) AS "isLast"
+     FROM role_grants g JOIN users u ON u.id = g.user_id WHERE g.role = 'administrator' AND ${inForce("g")} AND u.revoked_at IS NULL`,
+    { grants: `{${grantIds.join(",")}}`, workers: `{${workerIds.join(",")}}` },
+  );
+  return held?.isLast ?? false;
+}

@@ -186,4 +186,20 @@ describe("the mail", () => {
     expect(new Set(texts).size).toBe(1);
     expect((await ordered())[0]?.state).toBe("sent");
   });
+
+  test("refused for good it is not tried again", async () => {
+    const { organizationId, user, order, ordered } = await lay();
+    await order(`${daysFromToday(0)}T05:00:30Z`);
+    const [digest] = await ordered();
+    const payload = { organizationId, digestId: digest!.id };
+    await mailbox.behave("refuse");
+    try {
+      await sendDigest(payload, mailer, PUBLIC_URL);
+    } finally {
+      await mailbox.behave("accept");
+    }
+    expect((await ordered())[0]?.state).toBe("refused");
+    await sendDigest(payload, mailer, PUBLIC_URL);
+    expect(await mailbox.mails({ to: user.email })).toEqual([]);
+  });
 });

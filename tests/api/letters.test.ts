@@ -50,8 +50,10 @@ async function measure(
   });
 }
 
-const write = ({ organizationId }: { organizationId: string }, today = daysFromToday(0)) =>
-  inTransaction({ organizationId }, () => writeResultLetters(organizationId, today));
+const write = ({ organizationId }: { organizationId: string }, inDays = 0) =>
+  inTransaction({ organizationId }, () =>
+    writeResultLetters(organizationId, new Date(Date.now() + inDays * 86_400_000)),
+  );
 
 interface LetterRow {
   id: string;
@@ -127,7 +129,7 @@ describe("letters of results", () => {
     await measure(worker, daysFromToday(0), 90);
     await write(site);
     expect(await letters(site)).toHaveLength(1);
-    await write(site, daysFromToday(12));
+    await write(site, 12);
     expect(await letters(site)).toHaveLength(2);
 
     await send({ site, letter });
@@ -140,6 +142,21 @@ describe("letters of results", () => {
       [site.organizationId],
     );
     expect(events.map(({ action }) => action)).toContain("write-result-letter");
+  });
+
+  test("what today is, the site's clock says", async () => {
+    const told = async (timeZone: string, hourUtc: string) => {
+      const site = await buildSite({ governingRuleSet: "uk-2005", timeZone, noticeDelayMin: 0 });
+      await measure(await buildWorker({ site }), daysFromToday(-2), 92);
+      const now = new Date(`${daysFromToday(-3)}T${hourUtc}:00Z`);
+      await inTransaction({ organizationId: site.organizationId }, () =>
+        writeResultLetters(site.organizationId, now),
+      );
+      return (await letters(site)).length;
+    };
+    expect(await told("Pacific/Auckland", "10:00")).toBe(0);
+    expect(await told("Pacific/Auckland", "13:00")).toBe(1);
+    expect(await told("America/Los_Angeles", "23:00")).toBe(0);
   });
 
   test("a result that turns out otherwise: unsent it is withdrawn and written anew, sent it is put right", async () => {

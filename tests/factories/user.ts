@@ -1,3 +1,4 @@
+import { randomUUID } from "node:crypto";
 import type { Role } from "../../server/lib/policy";
 import { insert, next } from "./insert";
 import { buildOrganization } from "./organization";
@@ -26,7 +27,8 @@ export async function buildUser(overrides: UserOverrides = {}): Promise<User> {
   const count = next();
   const {
     name = `Person ${count}`,
-    email = `person-${count}@dinward.example`,
+    // All files of a run share one mail catcher.
+    email = `person-${randomUUID().slice(0, 8)}@dinward.example`,
     workerId,
     language,
   } = overrides;
