@@ -1,6 +1,7 @@
 import tailwindcss from "@tailwindcss/vite";
 import react from "@vitejs/plugin-react";
 import { defineConfig, type Plugin } from "vite";
+import { compression, defineAlgorithm } from "vite-plugin-compression2";
 import { VitePWA } from "vite-plugin-pwa";
 
 /** Where the API runs while the client is served with hot reload; `npm run dev` sets it. */
@@ -57,6 +58,10 @@ export default defineConfig({
           }),
         ],
       },
+    }),
+    compression({
+      include: /\.(js|css|svg|webmanifest)$/,
+      algorithms: [defineAlgorithm("gzip", { level: 9 }), "brotliCompress"],
     }),
   ],
   build: {

@@ -24,7 +24,7 @@ function scriptsOf(entries: readonly string[], found = new Set<string>()): Set<s
   return found;
 }
 
-const words = ["shared/i18n/base-en.ts", "shared/i18n/office-en.ts"];
+const words = ["shared/i18n/compiled/base-en.ts", "shared/i18n/compiled/office-en.ts"];
 const firstPages: [role: string, page: string, words: string[], goalKb: number][] = [
   ["before sign-in", "sign-in", words.slice(0, 1), 180],
   ["officer", "waiting-page", words, 180],

@@ -1,13 +1,13 @@
 /**
  * npm run bench -- [--shifts=N] [part…]
  * Measures what the issue of speed is about, each figure beside a bound that is measured in the same run: engine,
- * history, recordings, microphones, choosing, timetable, pages, screens, saving, trail, export, histories. Sets up a database of its own, filled with scale data,
+ * history, recordings, microphones, choosing, timetable, pages, phone, screens, saving, trail, export, histories. Sets up a database of its own, filled with scale data,
  * and removes it. At the size that it has unless told otherwise, the whole takes less than five minutes on two cores with
  * nothing else to do.
  */
 
 import { spawn } from "node:child_process";
-import { mkdirSync, mkdtempSync, openSync, rmSync } from "node:fs";
+import { mkdirSync, mkdtempSync, openSync, readFileSync, rmSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { setTimeout as sleep } from "node:timers/promises";
@@ -29,6 +29,7 @@ const allParts = [
   "choosing",
   "timetable",
   "pages",
+  "phone",
   "screens",
   "saving",
   "trail",
@@ -37,7 +38,7 @@ const allParts = [
 ];
 /** As one bundle, as browsers and servers run it: a loader's helpers would be measured with it. */
 const bundled = ["engine", "history", "recordings", "microphones", "choosing"];
-const needDatabase = ["screens", "saving", "trail", "export", "histories"];
+const needDatabase = ["phone", "screens", "saving", "trail", "export", "histories"];
 
 const given = process.argv.slice(2);
 const shifts = Number(given.find((arg) => arg.startsWith("--shifts="))?.slice(9) ?? DEFAULT_SHIFTS);
@@ -91,7 +92,9 @@ async function startWeb(env, folder) {
     ))
   ) {
     if (Date.now() > deadline || web.exitCode !== null)
-      throw new Failure("the web process did not start");
+      throw new Failure(
+        `the web process did not start:\n${readFileSync(join(folder, "web.log"), "utf8").slice(-2000)}`,
+      );
     await sleep(100);
   }
   return web;
@@ -122,7 +125,7 @@ async function bench() {
           database: DATABASE,
           ports: { web: port, signIn: 1, smtp: 1 },
           publicUrl: `http://127.0.0.1:${port}`,
-          secrets: { client: "unused", session: "unused-".repeat(8) },
+          secrets: { client: "unused", session: "unused-".repeat(8), hook: "unused-".repeat(8) },
           dataDir: join(folder, "app"),
         }),
         LOG_LEVEL: "error",

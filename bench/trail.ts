@@ -1,14 +1,20 @@
+import { fork } from "node:child_process";
 import { createHash, randomBytes, randomUUID } from "node:crypto";
+import { once } from "node:events";
+import { join } from "node:path";
+import { setTimeout as sleep } from "node:timers/promises";
 import type pg from "pg";
 import { sealTrail } from "../server/lib/audit";
 import { connect, inTransaction, sequelize } from "../server/lib/db";
 import { checkRows, checkSeals } from "../server/queries/trail-check";
-import { title } from "./lib/measure";
+import { spreadOf, title } from "./lib/measure";
 import { openDatabase, organizations } from "./lib/scale";
 
 /** Shifts of one saving, and how long each side writes. */
 const ROWS = 10;
 const SECONDS = 4;
+/** How long it is written while the sealer is watched. */
+const LAG_SECONDS = 10;
 const tables = ["shift_revisions", "shifts", "shift_tasks"];
 
 interface Place {
@@ -20,8 +26,8 @@ interface Place {
 
 let saved = 0;
 
-/** A saving of ten shifts as the application's role writes it; with its events or without. */
-async function save(app: pg.Client, place: Place, hasEvents: boolean): Promise<void> {
+/** A saving of ten shifts as the application's role writes it; with its events or without. Answers the events' ids. */
+async function save(app: pg.Client, place: Place, hasEvents: boolean): Promise<string[]> {
   const { organizationId, siteId, taskId } = place;
   const date = new Date(Date.UTC(1950, 0, 1 + saved++)).toISOString().slice(0, 10);
   const json = JSON.stringify(
@@ -49,6 +55,7 @@ async function save(app: pg.Client, place: Place, hasEvents: boolean): Promise<v
      SELECT $1, "shiftId", "revisionId", p, $3, 120, 95 ${from}, generate_series(1, 4) p`,
     [organizationId, json, taskId],
   );
+  let events: string[] = [];
   if (hasEvents) {
     const records = JSON.parse(json).map(({ shiftId, salt }: { shiftId: string; salt: string }) => {
       const recorded = { date, localStart: "06:00", lengthMin: 480, tasks: 4 };
@@ -57,16 +64,19 @@ async function save(app: pg.Client, place: Place, hasEvents: boolean): Promise<v
         .update(JSON.stringify(recorded));
       return { shiftId, salt, recorded, digest: digest.digest("hex") };
     });
-    await app.query(
+    const { rows: written } = await app.query<{ id: string }>(
       `WITH given AS (SELECT * FROM jsonb_to_recordset($2::jsonb) AS x("shiftId" uuid, salt text, recorded jsonb, digest text)),
          event AS (INSERT INTO audit_events (organization_id, action, subject_kind, subject_id, values_digest)
            SELECT $1, 'save-shift', 'shift', "shiftId", decode(digest, 'hex') FROM given RETURNING id, values_digest)
        INSERT INTO audit_values (event_id, organization_id, salt, recorded)
-       SELECT e.id, $1, decode(g.salt, 'hex'), g.recorded FROM event e JOIN given g ON decode(g.digest, 'hex') = e.values_digest`,
+       SELECT e.id, $1, decode(g.salt, 'hex'), g.recorded FROM event e JOIN given g ON decode(g.digest, 'hex') = e.values_digest
+       RETURNING event_id AS id`,
       [organizationId, JSON.stringify(records)],
     );
+    events = written.map(({ id }) => id);
   }
   await app.query("COMMIT");
+  return events;
 }
 
 /** Savings per second of so many writers at once. */
@@ -82,6 +92,59 @@ async function rate(writers: pg.Client[], place: Place, hasEvents: boolean): Pro
     }),
   );
   return count / SECONDS;
+}
+
+/**
+ * While eight writers write and the sealer runs beside them: how long after its commit an event has its seal. A seal says when
+ * it was set, which its own transaction follows within a round trip.
+ */
+async function sealersLag(): Promise<void> {
+  const sealer = fork(join(import.meta.dirname, "lib/sealer.ts"), [organizationId], {
+    execArgv: ["--import", "tsx"],
+  });
+  await once(sealer, "message");
+  const writers = await Promise.all(
+    Array.from({ length: 8 }, () => openDatabase(process.env.DATABASE_URL)),
+  );
+  const records = async () =>
+    (
+      await db.query<{ count: number; lastEvent: string }>(
+        `SELECT (SELECT count(*) FROM audit_events WHERE organization_id = $1)::int + (SELECT count(*) FROM trail_entries WHERE organization_id = $1)::int AS count,
+           (SELECT max(id) FROM audit_events)::text AS "lastEvent"`,
+        [organizationId],
+      )
+    ).rows[0]!;
+  const before = await records();
+  const committedAt = new Map<string, number>();
+  const ends = performance.now() + LAG_SECONDS * 1000;
+  await Promise.all(
+    writers.map(async (app) => {
+      while (performance.now() < ends) {
+        const events = await save(app, place, true);
+        for (const id of events) committedAt.set(id, Date.now());
+      }
+    }),
+  );
+  await Promise.all(writers.map((writer) => writer.end()));
+  const written = (await records()).count - before.count;
+  let seals: { id: string; at: number }[] = [];
+  for (const until = Date.now() + 60_000; Date.now() < until; await sleep(500)) {
+    const found = await db.query<{ id: string; at: number }>(
+      `SELECT event_id AS id, (extract(epoch FROM sealed_at) * 1000)::float8 AS at FROM audit_seals
+       WHERE organization_id = $1 AND event_id > $2`,
+      [organizationId, before.lastEvent],
+    );
+    seals = found.rows.filter(({ id }) => committedAt.has(id));
+    if (seals.length === committedAt.size) break;
+  }
+  sealer.kill("SIGTERM");
+  await once(sealer, "exit");
+  if (seals.length < committedAt.size) throw new Error("events stay without their seals");
+  const lags = seals.map(({ id, at }) => Math.max(0, at - committedAt.get(id)!));
+  const { p50, p95 } = spreadOf(lags);
+  console.log(
+    `  from commit to seal while 8 writers write ${Math.round(written / LAG_SECONDS).toLocaleString("en")} records a second: p50 ${p50.toFixed(0)} ms, p95 ${p95.toFixed(0)} ms, longest ${Math.max(...lags).toFixed(0)} ms  (it rests 1000 ms between two looks)`,
+  );
 }
 
 const db = await openDatabase();
@@ -142,6 +205,7 @@ say(
     return all;
   }),
 );
+await sealersLag();
 say(
   "seals checked",
   await seconds(async () => {

@@ -28,11 +28,18 @@ import { recordReads } from "./20261202110100-record-reads";
 import { apiTokens } from "./20261202110200-api-tokens";
 import { groupMappings } from "./20261202110300-group-mappings";
 import { recordDraws } from "./20261202140000-record-draws";
+import { employerDuties } from "./20261203110000-employer-duties";
+import { representatives } from "./20261203111000-representatives";
+import { employerGrants } from "./20261203112000-employer-grants";
 import { undoneSteps } from "./20261203120000-undone-steps";
 import { absencesAndLoans } from "./20261203120100-absences-and-loans";
 import { handOvers } from "./20261203120200-hand-overs";
 import { digests } from "./20261203120300-digests";
 import { yearReports } from "./20261203130000-year-reports";
+import { trailKeepers } from "./20261203140000-trail-keepers";
+import { retention } from "./20261203140100-retention";
+import { mailEvents } from "./20261203150000-mail-events";
+import { mailChoices } from "./20261203150100-mail-choices";
 
 /** In the order in which they run. */
 export const migrations = [
@@ -71,4 +78,11 @@ export const migrations = [
   handOvers,
   digests,
   yearReports,
+  trailKeepers,
+  mailEvents,
+  mailChoices,
+  retention,
+  employerDuties,
+  representatives,
+  employerGrants,
 ];

@@ -77,6 +77,30 @@ const historyPath: Shot["path"] = async (ask) => {
   return `/measuring/histories/${run?.historyId}`;
 };
 
+/** The id of the first row of a list that is asked for by its address. */
+const first =
+  (address: string, to: (id: string) => string): Shot["path"] =>
+  async (ask) => {
+    const { rows } = (await ask(address)) as { rows: { id: string }[] };
+    return to(rows[0]?.id ?? "");
+  };
+/** The finding that was followed furthest: closed, with exposure before and after. */
+const findingPath = first(
+  "/findings?state=closed&kind=over-limit-at-ear&limit=1",
+  (id) => `/findings/${id}`,
+);
+const timetablePath: Shot["path"] = async (ask) => {
+  const { rows } = (await ask("/plans?state=all&limit=50")) as {
+    rows: { id: string; kind: string }[];
+  };
+  return `/plans/${rows.find(({ kind }) => kind === "timetable")?.id}`;
+};
+const activePath: Shot["path"] = async (ask) => {
+  const { rows } = (await ask("/protectors")) as { rows: { id: string; kind: string }[] };
+  return `/protectors/${rows.find(({ kind }) => kind === "active-muff")?.id}`;
+};
+const handOverPath = first("/crews?limit=1", (id) => `/crew-sheet/${id}/hand-over`);
+
 const shots: Shot[] = [
   { file: "waiting", role: "officer", path: "/waiting", width: 1440, height: 990 },
   {
@@ -100,9 +124,23 @@ const shots: Shot[] = [
   },
   { file: "time-history", role: "officer", path: historyPath, width: 1280, height: 1340 },
   { file: "group", role: "officer", path: groupPath, width: 1280, height: 1300 },
+  { file: "finding", role: "officer", path: findingPath, width: 1280, height: 1500 },
+  { file: "due", role: "officer", path: "/due", width: 1280, height: 900 },
+  { file: "fitting", role: "officer", path: "/protectors/fitting", width: 1280, height: 900 },
+  { file: "active-muff", role: "officer", path: activePath, width: 1280, height: 1400 },
+  { file: "timetable", role: "officer", path: timetablePath, width: 1280, height: 1300 },
+  { file: "hand-over", role: "supervisor", path: handOverPath, width: 400, height: 860 },
   { file: "crew-sheet", role: "supervisor", path: "/crew-sheet", width: 400, height: 860 },
   { file: "my-page", role: "worker", path: "/me", width: 390, height: 844 },
   { file: "year-file", role: "auditor", path: "/year-file", width: 1280, height: 960 },
+  { file: "trail-check", role: "auditor", path: "/trail/check", width: 1280, height: 800 },
+  {
+    file: "retention",
+    role: "administrator",
+    path: "/people/retention",
+    width: 1280,
+    height: 900,
+  },
   { file: "people", role: "administrator", path: "/people", width: 1280, height: 800 },
 ];
 

@@ -2,6 +2,7 @@ import { randomUUID } from "node:crypto";
 import { existsSync } from "node:fs";
 import path from "node:path";
 import express, { type ErrorRequestHandler, type Express, type Request } from "express";
+import expressStaticGzip, { type ExpressStaticGzipOptions } from "express-static-gzip";
 import helmet from "helmet";
 import { unlessBearer } from "./auth/bearer";
 import { Provider } from "./auth/provider";
@@ -19,6 +20,7 @@ import { buildOpenApi } from "./lib/open-api";
 import { answerProblem } from "./lib/problem-answer";
 import { withRequestId } from "./lib/request-context";
 import { defineRoutes } from "./routes";
+import { MAIL_HOOK_PATH } from "./routes/mail-hook";
 
 export interface AppState {
   /** Set while the process lets its last requests end. */
@@ -113,8 +115,12 @@ export function createApp(
   // Behind one address a whole works may read its letters; a secret of 24 bytes is not guessed at this rate.
   api.use("/calendar", limitTries("calendar", 120, 10));
   api.use("/acknowledgements", limitTries("acknowledgement", 120, 10));
+  // A provider reports each mail of a works at once, from one address.
+  api.use(MAIL_HOOK_PATH, limitTries("mail-hook", 3000, 10));
   api.use(...sessions(config).map(unlessBearer));
   api.use(unlessBearer(refuseForgery));
+  // Signed over the bytes as they come.
+  api.use(MAIL_HOOK_PATH, express.raw({ type: () => true, limit: "1mb" }));
   api.use(express.json({ limit: "4mb" }));
 
   if (routes.length === 0) {
@@ -140,11 +146,16 @@ function serveClient(app: Express): void {
       ? "../client"
       : "../dist/client",
   );
-  app.use(
-    "/assets",
-    express.static(path.join(client, "assets"), { immutable: true, maxAge: "365d", index: false }),
-  );
-  app.use(express.static(client, { index: false, maxAge: 0 }));
+  // Compressed once, by the build; who takes neither kind gets the file as it is.
+  const files = (folder: string, serveStatic: ExpressStaticGzipOptions["serveStatic"]) =>
+    expressStaticGzip(folder, {
+      enableBrotli: true,
+      orderPreference: ["br", "gz"],
+      index: false,
+      serveStatic,
+    });
+  app.use("/assets", files(path.join(client, "assets"), { immutable: true, maxAge: "365d" }));
+  app.use(files(client, { index: false, maxAge: 0 }));
   app.get("/{*rest}", (_request, response, next) => {
     response.setHeader("cache-control", "no-cache");
     response.sendFile(

@@ -82,6 +82,18 @@ test("missing, bad and unfitting values stand in one message", () => {
   ]);
 });
 
+test("secrets of the mail server may be missing, and several stand in turn; a short one is refused", () => {
+  expect(readConfig("web", complete).MAIL_HOOK_SECRETS).toEqual([]);
+  const [newer, older] = ["n".repeat(32), "o".repeat(32)];
+  expect(
+    readConfig("web", { ...complete, MAIL_HOOK_SECRETS: `${newer}, ${older}` }).MAIL_HOOK_SECRETS,
+  ).toEqual([newer, older]);
+  expect(refusal({ ...complete, MAIL_HOOK_SECRETS: "short", MAIL_RETURN_TO: "nowhere" })).toEqual([
+    "MAIL_RETURN_TO has to be the address to which undeliverable mails return",
+    "MAIL_HOOK_SECRETS has to be one or more secrets of at least 32 characters each, separated by commas; the first signs, all verify",
+  ]);
+});
+
 test("plain http is for this machine", () => {
   expect(refusal({ ...complete, PUBLIC_URL: "http://127.0.0.1:8080" })).toEqual([]);
   expect(

@@ -64,6 +64,8 @@ const mail = {
   SMTP_URL: address(/^smtps?$/, "the smtp:// or smtps:// address of the mail server"),
   MAIL_FROM: text("the sender of notices, such as Dinward <noise@example.org>"),
   PUBLIC_URL: address(/^https?$/, "the https:// address that people open"),
+  /** Where mails that can't be delivered go back to; else to the sender. */
+  MAIL_RETURN_TO: z.email({ error: "the address to which undeliverable mails return" }).optional(),
 };
 
 /** What each process needs. One schema names every missing or bad value in one message. */
@@ -82,6 +84,8 @@ const processes = {
     SESSION_IDLE_MIN: minutes(60),
     SESSION_ABSOLUTE_MIN: minutes(720),
     TRUST_PROXY: trustProxy,
+    /** Under which mail servers sign what became of a mail; none: nobody may report it. */
+    MAIL_HOOK_SECRETS: secretList.default([]),
   }),
   work: z.object({ ...database, ...mail }),
   /** What only reads the database. */

@@ -6,7 +6,7 @@ import { checkRows, checkSeals, trailState } from "./queries/trail-check";
 /**
  * npm run verify:trail
  * Recomputes every organization's trail and holds all rows against it, under the application's role. Exit code 1 where
- * anything is not as the trail says.
+ * anything is not as the trail says. With `-- --seal=1234` it prints that seal first, to compare it with one kept elsewhere.
  */
 const config = configOrExit("database");
 const database = connect(config.DATABASE_URL, { max: 1, application: "dinward verify" });
@@ -26,6 +26,8 @@ function sealLine({ kind, number, count, event, table }: SealFault): string {
       return `seal ${number}: its entry on rows was removed`;
     case "seal-broken":
       return `seal ${number} does not follow: ${about} was changed, or the seal was`;
+    case "values-removed":
+      return `seal ${number}: what is kept of ${about} was removed, and no erasure did that`;
     case "values-changed":
       return `seal ${number}: what is kept of ${about} is not what was written`;
   }
@@ -90,7 +92,25 @@ async function verify(organizationId: string): Promise<number> {
   return faults;
 }
 
+/** What `--seal=1234` asks: the seal as it stands here, to hold against one that was kept elsewhere. */
+async function printSeal(organizationId: string, number: number): Promise<void> {
+  const found = await inTransaction({ organizationId, readOnly: true }, () =>
+    row<{ name: string; hash: string | null }>(
+      `SELECT o.name, encode(s.hash, 'hex') AS hash FROM organizations o LEFT JOIN audit_seals s ON s.organization_id = o.id AND s.number = :number
+       WHERE o.id = :organizationId`,
+      { organizationId, number },
+    ),
+  );
+  console.log(`${found?.name}\n  seal ${number}: ${found?.hash ?? "there is none"}`);
+}
+const asked = process.argv.find((text) => text.startsWith("--seal="))?.slice("--seal=".length);
+
 try {
+  if (asked !== undefined && !/^[1-9]\d{0,14}$/.test(asked))
+    throw new Error("--seal= wants the number of a seal");
+  if (asked !== undefined)
+    for (const organizationId of await organizationIds())
+      await printSeal(organizationId, Number(asked));
   let faults = 0;
   for (const organizationId of await organizationIds()) faults += await verify(organizationId);
   console.log(

@@ -4,6 +4,7 @@ import { Logger, parseCronItems, run, type TaskList } from "graphile-worker";
 import { configOrExit } from "./config";
 import { analyseStoredRecording } from "./jobs/analyse-recording";
 import { checkMicrophones } from "./jobs/check-microphones";
+import { erasePeople } from "./jobs/erase-people";
 import { lookAfter } from "./jobs/look-after";
 import { readHistoryImport } from "./jobs/read-history";
 import { recomputeStaleDays } from "./jobs/recompute-stale-days";
@@ -11,6 +12,7 @@ import { searchTimetable } from "./jobs/search-timetable";
 import { sendDigest } from "./jobs/send-digest";
 import { sendEscalation } from "./jobs/send-escalation";
 import { sendNotice } from "./jobs/send-notice";
+import { sendTrailMail } from "./jobs/send-trail-mail";
 import { sealTrail } from "./lib/audit";
 import { connect, inTransaction, organizationIds, sequelize } from "./lib/db";
 import { openFileStore } from "./lib/file-store";
@@ -24,7 +26,7 @@ const config = configOrExit("work");
 const log = createLog(config.LOG_LEVEL);
 defineModels(connect(config.DATABASE_URL, { application: "dinward work" }));
 openFileStore(config.DATA_DIR);
-const mailer = new Mailer(config.SMTP_URL, config.MAIL_FROM);
+const mailer = new Mailer(config.SMTP_URL, config.MAIL_FROM, config.MAIL_RETURN_TO);
 let isStopping = false;
 
 /** A job runs under an id of its own, which its events and log lines carry. */
@@ -52,6 +54,10 @@ const taskList: TaskList = {
     sendEscalation(payload, mailer, config.PUBLIC_URL),
   ),
   "send-digest": job("send-digest", (payload) => sendDigest(payload, mailer, config.PUBLIC_URL)),
+  "send-trail-mail": job("send-trail-mail", (payload) =>
+    sendTrailMail(payload, mailer, config.PUBLIC_URL),
+  ),
+  "erase-people": job("erase-people", (payload) => erasePeople(payload, () => isStopping)),
   "read-history": job("read-history", (payload) => readHistoryImport(payload)),
   "analyse-recording": job("analyse-recording", (payload) => analyseStoredRecording(payload)),
   "check-microphones": job("check-microphones", (payload) => checkMicrophones(payload)),

@@ -10,6 +10,8 @@ export const paths = {
   /** Whoever has a letter by mail, without signing in. */
   acknowledge: (secret: string) => `/acknowledge/${secret}`,
 
+  /** The site in counts without names, for the workers' representative. */
+  siteFigures: "/site-figures",
   waiting: "/waiting",
   days: "/days",
   day: (crewId: string, date: string) => `/days/${crewId}/${date}`,
@@ -57,7 +59,6 @@ export const paths = {
   newSurvey: "/measuring/surveys/new",
   survey: (id: string) => `/measuring/surveys/${id}`,
   changeSurvey: (id: string) => `/measuring/surveys/${id}/change`,
-  fieldSheet: (id: string) => `/measuring/surveys/${id}/field-sheet`,
   sample: "/measuring/sample",
   outAndBack: "/measuring/out-and-back",
   historyImports: "/measuring/histories/import",
@@ -75,7 +76,6 @@ export const paths = {
   choose: "/protectors/choose",
   /** Protectors compared for a task's noise. */
   chooseFor: (taskId: string) => `/protectors/choose?task=${taskId}`,
-  slips: (workerIds: readonly string[]) => `/protectors/slips?workers=${workerIds.join(",")}`,
   stock: "/protectors/stock",
   wearing: "/protectors/wearing",
   wearingRound: "/protectors/wearing/round",
@@ -121,9 +121,18 @@ export const paths = {
   draw: (id: string) => `/year-file/draws/${id}`,
   trail: "/trail",
   trailCheck: "/trail/check",
+  /** Who outside keeps the trail's head. */
+  trailHead: "/trail/head",
   people: "/people",
   visitors: "/people/visitors",
   groups: "/people/groups",
+  /** Agencies and contractors: who does what for their people. */
+  employers: "/workers-of-others",
+  /** People of those employers who read their people's results, and what they read. */
+  employerShares: "/people/employers",
+  sharedResults: "/shared-results",
+  /** How long people stay in the records, and erasing them. */
+  retention: "/people/retention",
   /** Who read whose record. */
   reads: "/trail/reads",
   person: (id: string) => `/people/${id}`,

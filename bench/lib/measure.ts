@@ -20,10 +20,12 @@ export async function measureBeside(
       if (index >= 0) taken[side]!.push(performance.now() - began);
     }
   }
-  return taken.map((list) => {
-    list.sort((a, b) => a - b);
-    return { p50: at(list, 0.5), p95: at(list, 0.95) };
-  }) as [Spread, Spread];
+  return taken.map(spreadOf) as [Spread, Spread];
+}
+
+export function spreadOf(values: readonly number[]): Spread {
+  const sorted = values.toSorted((a, b) => a - b);
+  return { p50: at(sorted, 0.5), p95: at(sorted, 0.95) };
 }
 
 const ms = (value: number) => `${value.toFixed(1)} ms`;

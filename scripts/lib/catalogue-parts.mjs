@@ -23,11 +23,12 @@ const beyondWorkers = [
   "notice-line",
   "record-form",
   "reviewed-change",
+  "slips-link",
   "spectrum-chart",
   "spectrum-field",
 ]
   .map((name) => `src/components/${name}.tsx`)
-  .concat("src/lib/role-word.ts");
+  .concat("src/lib/role-word.ts", "src/lib/employer-words.ts");
 
 const included = {
   base: [
@@ -52,7 +53,18 @@ const included = {
     "shared/day/**",
   ],
   people: [
-    ...features("crew-sheet", "year-file", "trail", "people", "sites-admin", "access", "tokens"),
+    ...features(
+      "crew-sheet",
+      "year-file",
+      "trail",
+      "people",
+      "sites-admin",
+      "access",
+      "tokens",
+      "mails",
+      "site-figures",
+      "employer-shares",
+    ),
     ...pages(
       "crew-sheet-page",
       "crew-people-page",
@@ -61,15 +73,20 @@ const included = {
       "draw-page",
       "trail-page",
       "trail-check-page",
+      "trail-head-page",
+      "retention-page",
       "people-page",
       "person-page",
       "visitors-page",
+      "employer-shares-page",
+      "shared-results-page",
       "groups-page",
       "account-page",
       "reads-page",
       "record-access-page",
       "sites-page",
       "site-form-page",
+      "site-figures-page",
     ),
   ],
   office: [
@@ -89,6 +106,7 @@ const included = {
     ),
     ...pages(
       "waiting-page",
+      "employers-page",
       "finding*-page",
       "letter*-page",
       "worker*-page",
@@ -112,7 +130,6 @@ const included = {
       "wearing*-page",
       "stock-page",
       "choose-page",
-      "slips-page",
       "plan*-page",
       "try-changes-page",
       "zone-sign-page",
@@ -139,7 +156,6 @@ const included = {
       "to-measure-page",
       "workplace-changes-page",
       "survey*-page",
-      "field-sheet-page",
       "sample-page",
       "out-and-back-page",
       "histor*-page",
@@ -150,7 +166,11 @@ const included = {
     ),
   ],
   // Documents of the office; a worker's own is among the mail's words.
-  reports: ["server/reports/survey-report.ts", "server/reports/year-report.ts"],
+  reports: [
+    "server/reports/field-sheet.ts",
+    "server/reports/survey-report.ts",
+    "server/reports/year-report.ts",
+  ],
   mail: ["server/**"],
 };
 

@@ -11,6 +11,8 @@ export interface Secrets {
   client: string;
   /** Signs sessions. */
   session: string;
+  /** Signs what becomes of mails. */
+  hook: string;
 }
 
 export function applicationEnvironment(options: {
@@ -32,6 +34,7 @@ export function providerEnvironment(options: {
 }): NodeJS.ProcessEnv;
 export function catcherEnvironment(options: {
   ports: Ports;
+  secrets: Pick<Secrets, "hook">;
   serviceDir: string;
 }): NodeJS.ProcessEnv;
 export const providerScript: string;

@@ -24,6 +24,8 @@ export function applicationEnvironment({
     OIDC_ALLOW_INSECURE: "true",
     SMTP_URL: `smtp://127.0.0.1:${ports.smtp}`,
     MAIL_FROM: "Dinward <noise@dinward.example>",
+    MAIL_RETURN_TO: "returned@dinward.example",
+    MAIL_HOOK_SECRETS: secrets.hook,
     SESSION_SECRETS: secrets.session,
     PUBLIC_URL: publicUrl,
     DATA_DIR: dataDir,
@@ -52,12 +54,15 @@ export function providerEnvironment({ ports, publicUrl, secrets, people, service
   };
 }
 
-export function catcherEnvironment({ ports, serviceDir }) {
+/** Where the catcher reports mails that come back. */
+export function catcherEnvironment({ ports, secrets, serviceDir }) {
   return {
     ...process.env,
     NODE_ENV: "development",
     SMTP_PORT: String(ports.smtp),
     PORT: String(ports.mails),
+    HOOK_URL: `http://127.0.0.1:${ports.web}/api/hooks/mail`,
+    HOOK_SECRET: secrets.hook,
     SERVICE_DIR: serviceDir,
   };
 }

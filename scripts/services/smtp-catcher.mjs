@@ -2,8 +2,11 @@
  * The mail server of the demo and the tests: takes every mail, delivers none, shows them on a page.
  *
  * Environment: SMTP_PORT, PORT (of the page and its JSON), SERVICE_DIR (keeps the mails as files).
+ * A mail to an address with "bounce" in it is taken and then comes back: as a delivery-status mail to its return address
+ * and as an event. Both are signed with HOOK_SECRET and sent to HOOK_URL, where these are set; GET /reports lists them.
  * Tests make it misbehave with POST /behaviour {"mode": …}.
  */
+import { createHmac, randomUUID } from "node:crypto";
 import { mkdirSync, readdirSync, readFileSync, rmSync, writeFileSync } from "node:fs";
 import { createServer } from "node:http";
 import { join } from "node:path";
@@ -73,7 +76,89 @@ async function keep(raw, session) {
   };
   writeFileSync(join(folder, name.replace(/eml$/, "json")), JSON.stringify(envelope));
   writeFileSync(join(folder, name), raw);
-  messages.push(await readMessage(name));
+  const message = await readMessage(name);
+  messages.push(message);
+  return message;
+}
+
+/** What was reported of mails that came back, with the heads that signed it. */
+const reports = [];
+
+function signed(type, body) {
+  const time = String(Math.floor(Date.now() / 1000));
+  const signature = createHmac("sha256", process.env.HOOK_SECRET ?? "")
+    .update(`${time}.`)
+    .update(body)
+    .digest("hex");
+  return {
+    headers: { "content-type": type, "x-dinward-time": time, "x-dinward-signature": signature },
+    body,
+  };
+}
+
+const NO_MAILBOX = { status: "5.1.1", said: "smtp; 550 5.1.1 no mailbox of that name" };
+
+/** A delivery-status mail (RFC 3464) about a mail that came back, with its head. */
+function deliveryStatusMail({ to, from, messageId, subject }) {
+  const boundary = `report-${randomUUID()}`;
+  return [
+    "From: Mail delivery <postmaster@mail.example>",
+    `To: <${from}>`,
+    "Subject: Undelivered mail",
+    `Message-ID: <${randomUUID()}@mail.example>`,
+    `Date: ${new Date().toUTCString().replace("GMT", "+0000")}`,
+    "Auto-Submitted: auto-replied",
+    "MIME-Version: 1.0",
+    `Content-Type: multipart/report; report-type=delivery-status; boundary="${boundary}"`,
+    "",
+    `--${boundary}`,
+    "Content-Type: text/plain; charset=utf-8",
+    "",
+    "Your mail could not be delivered: there is no mailbox of that name.",
+    "",
+    `--${boundary}`,
+    "Content-Type: message/delivery-status",
+    "",
+    "Reporting-MTA: dns; mail.example",
+    "",
+    `Final-Recipient: rfc822; ${to}`,
+    "Action: failed",
+    `Status: ${NO_MAILBOX.status}`,
+    `Diagnostic-Code: ${NO_MAILBOX.said}`,
+    "",
+    `--${boundary}`,
+    "Content-Type: text/rfc822-headers",
+    "",
+    `Message-ID: ${messageId}`,
+    `Subject: ${subject}`,
+    "",
+    `--${boundary}--`,
+    "",
+  ].join("\r\n");
+}
+
+/** Says of a mail that was taken that it came back. */
+async function bounce(mail) {
+  const to = mail.envelope.to.find((address) => /bounce/i.test(address));
+  if (!to) return;
+  const { messageId, subject } = mail;
+  const text = deliveryStatusMail({
+    to,
+    from: mail.envelope.from,
+    messageId,
+    subject: subject.replace(/[^ -~]/g, "?"),
+  });
+  await keep(Buffer.from(text), {
+    envelope: { mailFrom: false, rcptTo: [{ address: mail.envelope.from }] },
+  });
+  const event = { id: randomUUID(), kind: "bounced", messageId, recipient: to, ...NO_MAILBOX };
+  const made = [signed("message/rfc822", text), signed("application/json", JSON.stringify(event))];
+  reports.push(...made);
+  if (!process.env.HOOK_URL) return;
+  for (const { headers, body } of made)
+    await fetch(process.env.HOOK_URL, { method: "POST", headers, body }).catch((error) =>
+      console.error(`${what}: the report of a mail that came back was not taken: ${error.message}`),
+    );
 }
 
 function smtpError(responseCode, text) {
@@ -99,14 +184,16 @@ const smtp = new SMTPServer({
         answer(smtpError(451, "Try again later"));
         return;
       }
+      let taken = null;
       try {
-        await keep(Buffer.concat(parts), session);
+        taken = await keep(Buffer.concat(parts), session);
       } catch (error) {
         answer(smtpError(452, `The mail could not be kept: ${error.code ?? error.message}`));
         return;
       }
       if (mode === "drop-after-data") cutLine(session);
       else answer(null, "Kept");
+      await bounce(taken);
     });
   },
 });
@@ -184,6 +271,7 @@ async function handle(request, response) {
   const route = `${request.method} ${url.pathname}`;
   if (route === "GET /") return sendHtml(response, "Mails of the demo", listPage());
   if (route === "GET /messages") return sendJson(response, 200, filterMessages(url.searchParams));
+  if (route === "GET /reports") return sendJson(response, 200, reports);
   if (route === "DELETE /messages") {
     deleteAll();
     return sendJson(response, 200, []);

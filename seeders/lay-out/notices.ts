@@ -152,13 +152,15 @@ export async function markSent(demo: Demo, by: Date, publicUrl: string): Promise
 /** An attempt of which nobody knows how it ended, and its one repetition. */
 const CUT_OFF = "connection lost after the message was handed over";
 const ATTEMPTS = 2;
+/** What a mail server said of a mail that it had taken. */
+const CAME_BACK = { status: "5.1.1", said: "smtp; 550 5.1.1 no mailbox of that name" };
 const DAY_MS = 86_400_000;
 /** As long as the officer's page shows what did not arrive. */
 const TROUBLE_SHOWN_DAYS = 30;
 
 /**
  * However late in the day the demo is filled, each site has an entry of a minute ago, whose people are still to be told,
- * and one before it of which a notice may not have arrived.
+ * one before it of which a notice may not have arrived, and one of which a notice came back.
  */
 export async function leaveSomeToTell(demo: Demo): Promise<void> {
   const { now } = demo;
@@ -170,8 +172,10 @@ export async function leaveSomeToTell(demo: Demo): Promise<void> {
         entryId: string;
         ids: string[];
         supervisorNoticeId: string | null;
+        workerNoticeId: string | null;
       }>(
-        `SELECT n.entry_id AS "entryId", array_agg(n.id) AS ids, (array_agg(n.id ORDER BY n.id) FILTER (WHERE n.audience = 'supervisor'))[1] AS "supervisorNoticeId"
+        `SELECT n.entry_id AS "entryId", array_agg(n.id) AS ids, (array_agg(n.id ORDER BY n.id) FILTER (WHERE n.audience = 'supervisor'))[1] AS "supervisorNoticeId",
+           (array_agg(n.id ORDER BY n.id) FILTER (WHERE n.audience = 'worker'))[1] AS "workerNoticeId"
          FROM notices n WHERE n.site_id = :siteId AND n.state IN ('waiting', 'sent') AND n.created_at > CAST(:since AS timestamptz)
            AND EXISTS (SELECT 1 FROM notice_items i JOIN findings f ON f.id = i.finding_id WHERE i.notice_id = n.id AND f.state <> 'closed')
          GROUP BY n.entry_id ORDER BY max(n.created_at) DESC, n.entry_id LIMIT 5`,
@@ -193,6 +197,13 @@ export async function leaveSomeToTell(demo: Demo): Promise<void> {
       await execute(
         `UPDATE notices SET state = 'possibly-sent', sent_at = NULL, tries = $2, unknown_outcomes = $2, last_error = $3 WHERE id = $1`,
         [unsure?.supervisorNoticeId ?? null, ATTEMPTS, CUT_OFF],
+      );
+      const returned = before.find(({ workerNoticeId }) => workerNoticeId !== null);
+      await execute(
+        `WITH returned AS (UPDATE notices SET state = 'bounced', last_error = $2, revision = revision + 1 WHERE id = $1 AND state = 'sent' RETURNING id, organization_id)
+         INSERT INTO mail_events (organization_id, notice_id, event_id, kind, way, status, said, received_at)
+         SELECT organization_id, id, 'report ' || id, 'bounced', 'report', $2, $3, $4 FROM returned`,
+        [returned?.workerNoticeId ?? null, CAME_BACK.status, CAME_BACK.said, now.toISOString()],
       );
     });
   }

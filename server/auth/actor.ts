@@ -1,7 +1,7 @@
 import { row } from "../lib/db";
 import { AppError } from "../lib/errors";
 import { inForce, lastEnd } from "../lib/grants";
-import { Actor, type Grant } from "../lib/policy";
+import { Actor, type EmployerGrant, type Grant } from "../lib/policy";
 
 interface UserRow {
   id: string;
@@ -12,6 +12,7 @@ interface UserRow {
   workerId: string | null;
   sessionEpoch: number;
   grants: Grant[];
+  employerGrants: EmployerGrant[];
   /** When the last of the grants that ended by themselves did. */
   endedAt: Date | null;
 }
@@ -25,13 +26,15 @@ export async function loadActor(userId: string, epoch: number): Promise<Actor> {
   const user = await row<UserRow>(
     `SELECT u.id, u.organization_id AS "organizationId", u.name, u.email, u.language, u.worker_id AS "workerId", u.session_epoch AS "sessionEpoch",
        coalesce((SELECT json_agg(json_build_object('role', g.role, 'siteId', g.site_id, 'year', g.year)) FROM role_grants g
-                 WHERE g.user_id = u.id AND ${inForce("g")}), '[]') AS grants,
+                 WHERE g.user_id = u.id AND g.role <> 'employer' AND ${inForce("g")}), '[]') AS grants,
+       coalesce((SELECT json_agg(json_build_object('id', g.id, 'siteId', g.site_id)) FROM role_grants g
+                 WHERE g.user_id = u.id AND g.role = 'employer' AND ${inForce("g")}), '[]') AS "employerGrants",
        ${lastEnd("u")} AS "endedAt"
      FROM users u WHERE u.id = :userId AND u.revoked_at IS NULL`,
     { userId },
   );
   if (!user || user.sessionEpoch !== epoch) throw new AppError("signed-out", 401);
-  if (user.grants.length === 0)
+  if (user.grants.length + user.employerGrants.length === 0)
     throw new AppError(user.endedAt === null ? "signed-out" : "access-ended", 401);
   return new Actor(
     user.id,
@@ -41,5 +44,6 @@ export async function loadActor(userId: string, epoch: number): Promise<Actor> {
     user.language,
     user.workerId,
     user.grants,
+    user.employerGrants,
   );
 }

@@ -247,7 +247,9 @@ export function defineAuthRoutes(provider: Provider): void {
           `SELECT id, name, time_zone AS "timeZone", language FROM sites ORDER BY name`,
         );
         const reachable = sites.filter(({ id }) =>
-          [...actor.grants, ...actor.visits].some(({ siteId }) => siteId === null || siteId === id),
+          [...actor.grants, ...actor.visits, ...actor.employerGrants].some(
+            ({ siteId }) => siteId === null || siteId === id,
+          ),
         );
         return {
           user: {
@@ -259,6 +261,7 @@ export function defineAuthRoutes(provider: Provider): void {
             roles: [
               ...new Set(actor.grants.map(({ role }) => role)),
               ...(actor.isVisitor ? (["visitor"] as const) : []),
+              ...(actor.isOfEmployer ? (["employer"] as const) : []),
             ],
             organizationName: organization?.name ?? "",
             sites: reachable,

@@ -159,7 +159,7 @@ class News {
 async function daysToldOf(days: readonly SiteDay[]): Promise<SiteDay[]> {
   return rows<SiteDay>(
     `SELECT DISTINCT x."workerId", x.date::text AS date, x."siteId" FROM jsonb_to_recordset($1::jsonb) AS x("workerId" uuid, date date, "siteId" uuid)
-     JOIN notice_items i ON i.worker_id = x."workerId" AND i.date = x.date JOIN notices n ON n.id = i.notice_id AND n.state IN ('sending', 'sent', 'possibly-sent')`,
+     JOIN notice_items i ON i.worker_id = x."workerId" AND i.date = x.date JOIN notices n ON n.id = i.notice_id AND n.state IN ('sending', 'sent', 'possibly-sent', 'bounced', 'on-paper')`,
     [JSON.stringify(days.map(({ workerId, date, siteId }) => ({ workerId, date, siteId })))],
   );
 }

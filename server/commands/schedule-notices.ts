@@ -100,6 +100,7 @@ async function audiences(
      UNION
      SELECT d.worker_id, d.date::text, u.id, 'worker' FROM day d
        JOIN users u ON u.worker_id = d.worker_id AND u.revoked_at IS NULL AND u.email IS NOT NULL
+       AND NOT EXISTS (SELECT 1 FROM mail_choices c WHERE c.user_id = u.id AND 'own-limit' = ANY (c.off))
      UNION
      SELECT d.worker_id, d.date::text, u.id, 'officer' FROM day d
        JOIN role_grants g ON g.role = 'officer' AND ${inForce("g")} AND (g.site_id IS NULL OR g.site_id = :siteId)
@@ -181,7 +182,13 @@ const changedDays = ({ days }: Recomputation) =>
   );
 
 const unsent: ReadonlySet<string> = new Set(["waiting", "held"]);
-const told: ReadonlySet<string> = new Set(["sending", "sent", "possibly-sent"]);
+const told: ReadonlySet<string> = new Set([
+  "sending",
+  "sent",
+  "possibly-sent",
+  "bounced",
+  "on-paper",
+]);
 
 /** How far the notices are that tell of these days: mostly there are none, and nothing has to follow. */
 async function statesOfNotices(days: string): Promise<string[]> {
@@ -231,7 +238,7 @@ async function replaceSent({
      FROM notices n JOIN notice_items i ON i.notice_id = n.id
      JOIN jsonb_to_recordset($1::jsonb) AS x("workerId" uuid, date date, "resultId" uuid) ON x."workerId" = i.worker_id AND x.date = i.date
      JOIN day_results told ON told.id = i.result_id JOIN day_results now ON now.id = x."resultId"
-     WHERE n.state IN ('sending', 'sent', 'possibly-sent') AND now.id <> told.id
+     WHERE n.state IN ('sending', 'sent', 'possibly-sent', 'bounced', 'on-paper') AND now.id <> told.id
        AND (now.verdict_at_ear <> told.verdict_at_ear OR now.verdict_outside <> told.verdict_outside
          OR abs(coalesce(now.at_ear_counted_db, now.at_ear_db, 0) - coalesce(told.at_ear_counted_db, told.at_ear_db, 0)) >= 0.05 OR abs(coalesce(now.outside_db, 0) - coalesce(told.outside_db, 0)) >= 0.05
          OR EXISTS (SELECT 1 FROM jsonb_to_recordset(now.criteria->'governing') AS c("criterionId" text, verdict text, "levelDb" float8)

@@ -27,7 +27,8 @@ export async function storeFile(
     throw new AppError("quota-exceeded", 413, { limitBytes: QUOTA_BYTES });
   const inserted = await execute(
     `INSERT INTO files (organization_id, sha256, size_bytes, media_type, name, uploaded_by)
-     VALUES ($1, decode($2, 'hex'), $3, $4, $5, $6) ON CONFLICT (organization_id, sha256) DO NOTHING`,
+     VALUES ($1, decode($2, 'hex'), $3, $4, $5, $6) ON CONFLICT (organization_id, sha256)
+     DO UPDATE SET name = excluded.name, uploaded_by = excluded.uploaded_by, uploaded_at = now(), erased_at = NULL WHERE files.erased_at IS NOT NULL`,
     [
       actor.organizationId,
       staged.sha256,

@@ -1,11 +1,12 @@
 import { randomUUID } from "node:crypto";
 import type { DayInput, ProtectorData, RuleSetVersion } from "../../shared/acoustics/types";
 import type { Cause } from "../../shared/findings/causes";
-import { type Proposal, proposeRemedy } from "../../shared/findings/remedy";
+import { type OnWorker, type Proposal, proposeRemedy } from "../../shared/findings/remedy";
 import type { FindingKind, FindingState } from "../../shared/schemas/finding";
 import { recordAudit, recordAuditMany } from "../lib/audit";
 import { execute, rows } from "../lib/db";
 import { groupBy } from "../lib/group-by";
+import { knownOnWorkers, onWorkerKey } from "../queries/on-worker";
 import { registerOn } from "../queries/protector-register";
 
 export interface DayCauses {
@@ -51,6 +52,8 @@ const mendable = new Set<FindingKind>([
   "no-protector",
   "dual-protection",
 ]);
+
+const isMendable = ({ cause }: { cause: Cause }): boolean => mendable.has(cause.kind);
 
 const causeKey = (
   subject: string,
@@ -151,7 +154,13 @@ export async function updateFindings(
     }
   }
   await insertFindings(organizationId, fresh);
-  const remedies = new Remedies();
+  const remedies = new Remedies(
+    await knownOnWorkers(
+      [...new Set([...latest.values()].filter(isMendable).map(({ day }) => day))].filter(
+        ({ input, governing }) => input && governing,
+      ),
+    ),
+  );
   const facts = new Map<string, Record<string, unknown>>();
   for (const [findingId, { day, cause }] of latest)
     facts.set(findingId, await factsOf(day, cause, remedies));
@@ -186,12 +195,14 @@ class Remedies {
   private readonly registers = new Map<string, ProtectorData[]>();
   private readonly found = new Map<DayCauses, Proposal | null>();
 
+  constructor(private readonly onWorkers: ReadonlyMap<string, OnWorker>) {}
+
   async of(day: DayCauses, input: DayInput, governing: RuleSetVersion): Promise<Proposal | null> {
     const known = this.found.get(day);
     if (known !== undefined) return known;
     const models = this.registers.get(day.date) ?? (await registerOn(day.date));
     this.registers.set(day.date, models);
-    const proposal = proposeRemedy(input, governing, models);
+    const proposal = proposeRemedy(input, governing, models, this.onWorkers.get(onWorkerKey(day)));
     this.found.set(day, proposal);
     return proposal;
   }
@@ -202,7 +213,7 @@ async function factsOf(
   cause: Cause,
   remedies: Remedies,
 ): Promise<Record<string, unknown>> {
-  if (!mendable.has(cause.kind) || !day.input || !day.governing) return { ...cause.facts };
+  if (!isMendable({ cause }) || !day.input || !day.governing) return { ...cause.facts };
   return { ...cause.facts, ...(await remedies.of(day, day.input, day.governing)) };
 }
 

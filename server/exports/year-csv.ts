@@ -38,20 +38,20 @@ ORDER BY d.date, w.employee_number`;
 }
 
 /** The last record has as many fields as the others, so that a strict reader takes it. */
-const trailerLine = (rows: number) =>
-  `${TRAILER},${rows}${",".repeat(YEAR_COLUMNS.length - 2)}\r\n`;
+const trailerLine = (rows: number, columnCount: number) =>
+  `${TRAILER},${rows}${",".repeat(columnCount - 2)}\r\n`;
 
 /**
  * Passes the database's own COPY through to the response, under the application's role and row security. The last
  * record is written only when all others were: a file that breaks off ends without it, and its connection is cut.
  * When the reader goes away, the query ends with its connection.
  *
- * @returns how many days were written
+ * @returns how many records were written
  */
-export async function streamYear(
+export async function streamRecords(
   databaseUrl: string,
   actor: Actor,
-  what: YearExport,
+  { query, columnCount }: { query: string; columnCount: number },
   response: Response,
 ): Promise<number> {
   const client = new pg.Client({
@@ -75,16 +75,14 @@ export async function streamYear(
       [actor.organizationId],
     );
     const records = client.query(
-      copyTo(
-        `COPY (${yearQuery(actor, what)}) TO STDOUT WITH (FORMAT csv, HEADER true, ENCODING 'UTF8')`,
-      ),
+      copyTo(`COPY (${query}) TO STDOUT WITH (FORMAT csv, HEADER true, ENCODING 'UTF8')`),
     );
     const ends = new RecordEnds();
     await pipeline(records, ends, response, { end: false });
     await client.query("COMMIT");
     if (records.rowCount !== ends.count - 1)
       throw new Error("the database wrote another number of rows than arrived");
-    response.end(trailerLine(records.rowCount));
+    response.end(trailerLine(records.rowCount, columnCount));
     return records.rowCount;
   } catch (error) {
     if (response.headersSent) response.destroy();
@@ -95,3 +93,17 @@ export async function streamYear(
     await client.end().catch(() => undefined);
   }
 }
+
+/** A site's year, as `streamRecords` passes it on. */
+export const streamYear = (
+  databaseUrl: string,
+  actor: Actor,
+  what: YearExport,
+  response: Response,
+): Promise<number> =>
+  streamRecords(
+    databaseUrl,
+    actor,
+    { query: yearQuery(actor, what), columnCount: YEAR_COLUMNS.length },
+    response,
+  );

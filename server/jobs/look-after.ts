@@ -3,6 +3,8 @@ import { closeFitDues, closeLaidDownFits, openFitDues } from "../commands/follow
 import { queueRecompute } from "../commands/mark-days-stale";
 import { orderDigests } from "../commands/order-digests";
 import { queueHistoryReading } from "../commands/order-history-reading";
+import { orderTrailHeads } from "../commands/order-trail-heads";
+import { queueErasure } from "../commands/propose-erasure";
 import { queueNotice } from "../commands/schedule-notices";
 import { queueCheck } from "../commands/start-microphone-check";
 import { queueAnalysis } from "../commands/start-recording";
@@ -41,6 +43,10 @@ export async function lookAfter(): Promise<void> {
         "SELECT id FROM microphone_checks WHERE state = 'analysing' AND updated_at < now() - interval '1 minute'",
       );
       for (const { id } of unchecked) await queueCheck(organizationId, id);
+      const unerased = await rows<{ id: string }>(
+        "SELECT id FROM erasures WHERE state = 'approved' AND updated_at < now() - interval '1 minute'",
+      );
+      for (const { id } of unerased) await queueErasure(organizationId, id);
       await deleteAudioDue(organizationId);
       await openCalibrationFindings(organizationId);
       await closeLaidDownFits(organizationId);
@@ -49,6 +55,7 @@ export async function lookAfter(): Promise<void> {
       await writeResultLetters(organizationId, new Date());
       await escalateOverdue(organizationId);
       await orderDigests(organizationId, new Date());
+      await orderTrailHeads(organizationId, new Date());
       await execute("DELETE FROM idempotency_keys WHERE created_at < now() - interval '30 days'");
     });
   }

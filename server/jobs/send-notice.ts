@@ -48,7 +48,8 @@ export async function sendNotice(
   await inTransaction({ organizationId }, async () => {
     if (outcome.kind === "sent") {
       await execute(
-        "UPDATE notices SET state = 'sent', sent_at = now(), last_error = NULL, revision = revision + 1 WHERE id = $1",
+        // A report that it came back may be here before the server's own answer.
+        "UPDATE notices SET state = 'sent', sent_at = now(), last_error = NULL, revision = revision + 1 WHERE id = $1 AND state = 'sending'",
         [noticeId],
       );
       await recordAudit(

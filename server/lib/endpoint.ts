@@ -52,6 +52,8 @@ export interface RouteSpec<
       reply: R extends z.ZodType ? z.input<R> : undefined,
     ) => string | null | undefined;
   };
+  /** The answer shows several workers' records, and the handler itself keeps who read them. */
+  keepsReads?: boolean;
   /** The handler writes the answer itself, outside any transaction of the request. */
   streams?: boolean;
 }
@@ -291,7 +293,7 @@ async function answer(
     uploaded.staged = await readUpload(request, response, spec.upload);
   }
   const answered = await inTransaction(
-    { organizationId, readOnly: readMethods.has(route.method) && !spec.reads },
+    { organizationId, readOnly: readMethods.has(route.method) && !spec.reads && !spec.keepsReads },
     async () => {
       const actor = await load();
       authorizeRoute(spec, actor);

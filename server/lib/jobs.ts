@@ -6,6 +6,8 @@ export interface JobPayloads {
   "send-notice": { organizationId: string; noticeId: string };
   "send-escalation": { organizationId: string; escalationId: string };
   "send-digest": { organizationId: string; digestId: string };
+  "send-trail-mail": { organizationId: string; mailId: string };
+  "erase-people": { organizationId: string; erasureId: string };
   "look-after": Record<string, never>;
   /** Reads a time history's file: a report, and once it is ordered the levels. */
   "read-history": { organizationId: string; importId: string };

@@ -23,6 +23,8 @@ export class Mailer {
   constructor(
     url: string,
     private readonly from: string,
+    /** To whom mails return that can't be delivered; else to the sender. */
+    private readonly returnTo?: string,
   ) {
     const { hostname, port, username, password, protocol } = new URL(url);
     const secure = protocol === "smtps:";
@@ -55,6 +57,7 @@ export class Mailer {
         text,
         to,
         from: this.from,
+        ...(this.returnTo ? { envelope: { from: this.returnTo, to } } : {}),
         headers: { "Auto-Submitted": "auto-generated" },
       });
       return { kind: "sent" };

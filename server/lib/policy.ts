@@ -1,7 +1,14 @@
 import { literal, type Model, type ModelStatic, Op, type WhereOptions } from "sequelize";
 import { forbidden, notFound } from "./errors";
 
-export const ROLES = ["officer", "supervisor", "worker", "auditor", "administrator"] as const;
+export const ROLES = [
+  "officer",
+  "supervisor",
+  "worker",
+  "auditor",
+  "administrator",
+  "representative",
+] as const;
 export type Role = (typeof ROLES)[number];
 
 const uuid = /^[0-9a-f-]{36}$/;
@@ -12,6 +19,12 @@ export interface Grant {
   readonly siteId: string | null;
   /** An auditor's grant may be about the records of one year at its site, and of nothing else. */
   readonly year?: number | null;
+}
+
+/** Somebody of an outside employer, who reads its people's results at one site. */
+export interface EmployerGrant {
+  readonly id: string;
+  readonly siteId: string;
 }
 
 const isWhole = ({ year }: Grant): boolean => (year ?? null) === null;
@@ -34,8 +47,17 @@ export class Actor {
     readonly language: string,
     readonly workerId: string | null,
     grants: readonly Grant[],
+    /** No roles either: they open what a policy names with `sharedWith`. */
+    readonly employerGrants: readonly EmployerGrant[] = [],
   ) {
-    for (const id of [userId, organizationId, workerId, ...grants.map(({ siteId }) => siteId)]) {
+    const granted = employerGrants.flatMap(({ id, siteId }) => [id, siteId]);
+    for (const id of [
+      userId,
+      organizationId,
+      workerId,
+      ...grants.map(({ siteId }) => siteId),
+      ...granted,
+    ]) {
       if (id !== null && !uuid.test(id)) throw new Error("an actor's ids are uuids");
     }
     this.grants = grants.filter(isWhole);
@@ -66,6 +88,27 @@ export class Actor {
 
   get isVisitor(): boolean {
     return this.visits.length > 0;
+  }
+
+  get isOfEmployer(): boolean {
+    return this.employerGrants.length > 0;
+  }
+
+  /**
+   * SQL: the row is a day at the site of one of this actor's employer grants, on which the worker worked there for that
+   * employer. The grant itself is asked for its employer: a name that somebody typed never stands in a condition.
+   */
+  sharedWith(day: string): string | false {
+    const ids = this.employerGrants.map(({ id }) => `'${id}'`).join(", ");
+    return (
+      this.isOfEmployer &&
+      `${day}.worker_id IN (SELECT p.worker_id FROM worker_employers p JOIN role_grants pg ON pg.employer_kind = p.employer AND pg.employer_name = p.employer_name
+        WHERE pg.id IN (${ids})) AND EXISTS (SELECT 1 FROM role_grants eg JOIN workers ew ON ew.id = ${day}.worker_id
+        JOIN LATERAL (SELECT x.employer, x.employer_name FROM worker_employers x WHERE x.worker_id = ew.id AND x.since <= ${day}.date
+          ORDER BY x.since DESC, x.number DESC LIMIT 1) ee ON ee.employer = eg.employer_kind AND ee.employer_name = eg.employer_name
+        WHERE eg.id IN (${ids}) AND eg.revoked_at IS NULL AND eg.ends_at > now()
+          AND eg.site_id = ${day}.site_id AND ${day}.date >= ew.hired_on AND (ew.left_on IS NULL OR ${day}.date <= ew.left_on))`
+    );
   }
 
   /** One of the roles at a site, or a visit there in that year. */

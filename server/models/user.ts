@@ -33,11 +33,14 @@ export class RoleGrant extends Model<
   declare id: CreationOptional<string>;
   declare organizationId: string;
   declare userId: string;
-  declare role: Role;
+  /** `employer` is none of the roles: it goes with the employer whose person is let in. */
+  declare role: Role | "employer";
   declare siteId: CreationOptional<string | null>;
   declare grantedBy: CreationOptional<string | null>;
   /** A visitor's: the one year that it is about. */
   declare year: CreationOptional<number | null>;
+  declare employerKind: CreationOptional<"agency" | "contractor" | null>;
+  declare employerName: CreationOptional<string | null>;
   /** When it ends by itself. */
   declare endsAt: CreationOptional<Date | null>;
   declare revokedAt: CreationOptional<Date | null>;
@@ -71,6 +74,8 @@ export function defineUserModels(sequelize: Sequelize): void {
       siteId: column.uuidOrNull(),
       grantedBy: column.uuidOrNull(),
       year: column.wholeOrNull(),
+      employerKind: column.textOrNull(),
+      employerName: column.textOrNull(),
       endsAt: column.instantOrNull(),
       revokedAt: column.instantOrNull(),
     },

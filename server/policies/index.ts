@@ -1,5 +1,5 @@
-import type { Actor } from "../lib/policy";
-import { policy, visible } from "../lib/policy";
+import { forbidden } from "../lib/errors";
+import { Actor, policy, visible } from "../lib/policy";
 
 interface AtSite {
   siteId: string;
@@ -27,6 +27,26 @@ export const sitePolicy = policy<{ id: string }>()({
     changeRules: (actor, { id }) => actor.isAt(id, "officer"),
   },
 });
+
+/** A site's figures without names: the workers' representative's, and with them no row that they count. */
+export const siteFiguresPolicy = policy<object>()({
+  sees: (actor, s) => [actor.at(`${s}.id`, "representative")],
+  can: {},
+});
+
+/**
+ * Who counts for a workers' representative: reads one site as its auditor does. For figures without names only; no row that
+ * it sees goes out.
+ *
+ * @throws AppError forbidden: no representative of the site.
+ */
+export function counterAt(actor: Actor, siteId: string): Actor {
+  if (!actor.isAt(siteId, "representative")) throw forbidden();
+  const { userId, organizationId, name, language } = actor;
+  return new Actor(userId, organizationId, name, null, language, null, [
+    { role: "auditor", siteId },
+  ]);
+}
 
 /** A site's year as a file, and what is missing in it. */
 export const yearPolicy = policy<AtSite & { year: number }>()({
@@ -220,6 +240,24 @@ export const refusalPolicy = policy<AtSite>()({
   can: { change: officerAt },
 });
 
+/** Who does what for the people of agencies and contractors: agreed by the officer of the site. */
+export const employerPolicy = policy<AtSite>()({
+  sees: (actor, e) => [actor.at(`${e}.site_id`, "officer", "auditor")],
+  can: { agree: officerAt },
+});
+
+/** Results that people of an outside employer read of its own people, and nothing else of anybody. */
+export const sharedResultPolicy = policy<OfWorker>()({
+  sees: (actor, d) => [actor.sharedWith(d)],
+  can: {},
+});
+
+/** Grants to people of outside employers: the office's and the administrators' of the site. */
+export const employerSharePolicy = policy<AtSite>()({
+  sees: (actor, g) => [actor.at(`${g}.site_id`, "officer", "administrator")],
+  can: { change: (actor, { siteId }) => actor.isAt(siteId, "officer", "administrator") },
+});
+
 /** Trainings as the office has them; a worker reads the own ones with the worker's record. */
 export const trainingPolicy = policy<AtSite>()({
   sees: (actor, t) => [actor.at(`${t}.site_id`, "officer", "auditor")],
@@ -360,6 +398,12 @@ export const exposureRecordPolicy = policy<AtSite>()({
   can: {},
 });
 
+/** All that is on record of oneself as a file: nobody else's to take. */
+export const ownRecordPolicy = policy<AtSite>()({
+  sees: (actor, w) => [actor.owns(`${w}.id`)],
+  can: {},
+});
+
 /** Reports of a site's year that were issued: whoever may read the year reads them, the officer issues. */
 export const yearReportPolicy = policy<AtSite>()({
   sees: (actor, r) => [actor.at(`${r}.site_id`, "officer", "auditor")],
@@ -372,6 +416,43 @@ export const userPolicy = policy<{ id: string }>()({
   can: {
     change: (actor) => actor.is("administrator"),
     revoke: (actor, { id }) => actor.is("administrator") && actor.userId !== id,
+  },
+});
+
+/** Who outside gets the trail's head: it is about the whole organization, so whoever administers all of it names them. */
+export const keeperPolicy = policy<object>()({
+  sees: (actor) => [actor.is("administrator", "auditor") && "TRUE"],
+  can: {
+    change: (actor) =>
+      actor.grants.some(({ role, siteId }) => role === "administrator" && siteId === null),
+  },
+});
+
+/** How long people stay in the records: the office's and the administrators' of the site; the organization's own term is all sites'. */
+export const retentionPolicy = policy<AtSite>()({
+  sees: (actor, w) => [actor.at(`${w}.site_id`, "officer", "administrator")],
+  can: {
+    propose: (actor, { siteId }) => actor.isAt(siteId, "officer", "administrator"),
+    setTerm: (actor) =>
+      actor.grants.some(({ role, siteId }) => role === "administrator" && siteId === null),
+  },
+});
+
+export const holdPolicy = policy<AtSite>()({
+  sees: (actor, h) => [actor.at(`${h}.site_id`, "officer", "administrator")],
+  can: { lift: (actor, { siteId }) => actor.isAt(siteId, "officer", "administrator") },
+});
+
+/** Erasing takes two people: nobody approves what they proposed. */
+export const erasurePolicy = policy<AtSite & { state: string; proposedBy: string }>()({
+  sees: (actor, e) => [actor.at(`${e}.site_id`, "officer", "administrator")],
+  can: {
+    approve: (actor, { siteId, state, proposedBy }) =>
+      state === "proposed" &&
+      proposedBy !== actor.userId &&
+      actor.isAt(siteId, "officer", "administrator"),
+    withdraw: (actor, { siteId, state }) =>
+      state === "proposed" && actor.isAt(siteId, "officer", "administrator"),
   },
 });
 
@@ -441,6 +522,8 @@ const tableOfSubject = {
   timetable: "timetables",
   draw: "record_draws",
   "hand-over": "hand_overs",
+  "legal-hold": "legal_holds",
+  erasure: "erasures",
 };
 
 /** The site an event is about, by its subject. */
@@ -457,7 +540,8 @@ export const auditPolicy = policy<object>()({
   sees: (actor, e) => [
     actor.at(siteOfEvent(e), "auditor"),
     actor.is("auditor") && `${e}.subject_kind = 'protector'`,
-    actor.is("administrator") && `${e}.subject_kind IN ('user', 'site', 'group-mapping')`,
+    actor.is("administrator") &&
+      `${e}.subject_kind IN ('user', 'site', 'group-mapping', 'organization', 'legal-hold', 'erasure')`,
     actor.visiting(siteOfEvent(e), `${e}.at`),
   ],
   can: {},
@@ -480,6 +564,9 @@ export const may = {
   followUp: (actor: Actor) => actor.is("officer", "supervisor"),
   export: (actor: Actor) => actor.is("officer", "auditor") || actor.isVisitor,
   readExposureRecord: (actor: Actor) => actor.is("officer", "auditor", "worker"),
+  takeOwnRecord: (actor: Actor) => actor.is("worker"),
+  /** Those to whom anything is sent about exposures. */
+  receiveMails: (actor: Actor) => actor.is("officer", "supervisor", "worker"),
   readYearReports: (actor: Actor) => actor.is("officer", "auditor"),
   drawRecords: (actor: Actor) => actor.is("auditor"),
   readDraws: (actor: Actor) => actor.is("officer", "auditor"),
@@ -497,11 +584,17 @@ export const may = {
   acknowledge: (actor: Actor) => actor.is("officer", "worker"),
   readLetters: (actor: Actor) => actor.is("officer", "auditor") || actor.isVisitor,
   readTrail: (actor: Actor) => actor.is("auditor", "administrator") || actor.isVisitor,
-  /** A visitor reads by hand. */
-  haveTokens: (actor: Actor) => actor.grants.length > 0,
+  /** A visitor reads by hand, a workers' representative too. */
+  haveTokens: (actor: Actor) => actor.grants.some(({ role }) => role !== "representative"),
+  readSiteFigures: (actor: Actor) => actor.is("representative"),
   readReads: (actor: Actor) => actor.is("auditor", "administrator", "worker"),
   /** Held against all rows of the organization: tables and keys, nobody's values. */
   checkTrail: (actor: Actor) => actor.is("auditor"),
+  retain: (actor: Actor) => actor.is("officer", "administrator"),
+  readEmployers: (actor: Actor) => actor.is("officer", "auditor"),
+  shareWithEmployers: (actor: Actor) => actor.is("officer", "administrator"),
+  readSharedResults: (actor: Actor) => actor.isOfEmployer,
+  readTrailKeeper: (actor: Actor) => actor.is("auditor", "administrator"),
   readSites: (actor: Actor) =>
     actor.is("officer", "auditor", "administrator", "supervisor") || actor.isVisitor,
 };

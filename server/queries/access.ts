@@ -10,11 +10,11 @@ import { readLogPolicy } from "../policies";
 type Reader = Omit<ReaderView, "endsAt"> & { endsAt: Date | null };
 
 const READERS = `SELECT u.id AS "userId", u.name, CASE WHEN g.year IS NULL THEN g.role ELSE 'visitor' END AS role,
-    s.name AS "siteName", g.year, g.ends_at AS "endsAt", s.time_zone AS "timeZone", %CREW% AS "crewName"
+    s.name AS "siteName", g.year, g.ends_at AS "endsAt", s.time_zone AS "timeZone", g.employer_name AS "employerName", %CREW% AS "crewName"
   FROM role_grants g JOIN users u ON u.id = g.user_id AND u.revoked_at IS NULL LEFT JOIN sites s ON s.id = g.site_id`;
 const readers = (crew: string) => READERS.replace("%CREW%", crew);
 const ORDER =
-  "ORDER BY array_position(ARRAY['officer', 'supervisor', 'auditor', 'administrator', 'visitor'], x.role), x.name, x.\"userId\", x.\"siteName\", x.\"crewName\"";
+  "ORDER BY array_position(ARRAY['officer', 'supervisor', 'auditor', 'administrator', 'employer', 'visitor'], x.role), x.name, x.\"userId\", x.\"siteName\", x.\"crewName\"";
 
 const present = (found: readonly Reader[]): ReaderView[] =>
   found.map(({ endsAt, ...reader }) => ({ ...reader, endsAt: endsAt?.toISOString() ?? null }));
@@ -32,9 +32,11 @@ export async function readersOfWorker(workerId: string): Promise<ReaderView[]> {
          WHERE w.id = :workerId AND ${inForce("g")} AND (
            (g.role IN ('officer', 'auditor', 'administrator') AND g.year IS NULL AND ${ofSite})
            OR (g.year IS NOT NULL AND EXISTS (SELECT 1 FROM days v WHERE v.worker_id = w.id AND v.site_id = g.site_id
-             AND v.date >= make_date(g.year, 1, 1) AND v.date <= make_date(g.year, 12, 31))))
+             AND v.date >= make_date(g.year, 1, 1) AND v.date <= make_date(g.year, 12, 31)))
+           OR (g.role = 'employer' AND (g.site_id = w.site_id OR EXISTS (SELECT 1 FROM days v WHERE v.worker_id = w.id AND v.site_id = g.site_id))
+             AND EXISTS (SELECT 1 FROM worker_employers e WHERE e.worker_id = w.id AND e.employer = g.employer_kind AND e.employer_name = g.employer_name)))
          UNION ALL
-         SELECT DISTINCT u.id, u.name, 'supervisor', NULL::text, NULL::int, NULL::timestamptz, NULL::text, c.name
+         SELECT DISTINCT u.id, u.name, 'supervisor', NULL::text, NULL::int, NULL::timestamptz, NULL::text, NULL::text, c.name
          FROM crew_memberships m JOIN crews c ON c.id = m.crew_id JOIN crew_supervisors v ON v.crew_id = c.id
            JOIN users u ON u.id = v.user_id AND u.revoked_at IS NULL
          WHERE m.worker_id = :workerId AND m.valid @> current_date AND v.valid @> current_date

@@ -67,6 +67,38 @@ const sources: Readonly<Record<DutyKind, (actor: Actor) => string>> = {
     FROM (${trainingDues(visible(workerPolicy, actor, "w"))}) q`,
 };
 
+export interface DutyCount {
+  kind: DutyKind;
+  /** Some of it is about somebody. */
+  isPersonal: boolean;
+  total: number;
+  overdue: number;
+  soon: number;
+  later: number;
+}
+
+/** Days in which something is due soon. */
+const SOON_DAYS = 30;
+
+/** People for whom something is due at a site, each by the first of it, and what is due for nobody, kind by kind. */
+export const countDuties = (actor: Actor, siteId: string): Promise<DutyCount[]> =>
+  rows<DutyCount>(
+    `WITH x AS (${(Object.keys(sources) as DutyKind[])
+      .map(
+        (kind) =>
+          `SELECT '${kind}' AS kind, q.site_id, q.due_on, q.worker_id, q.id
+           FROM (${sources[kind](actor)}) q (id, site_id, due_on, worker_id, what, target_id, finding_kind, criterion)`,
+      )
+      .join(" UNION ALL ")}),
+     first AS (SELECT kind, bool_or(worker_id IS NOT NULL) AS is_personal, min(due_on) AS due_on FROM x
+       WHERE site_id = :siteId GROUP BY kind, coalesce(worker_id::text, id))
+     SELECT f.kind, bool_or(f.is_personal) AS "isPersonal", count(*)::int AS total, count(*) FILTER (WHERE f.due_on < t.date)::int AS overdue,
+       count(*) FILTER (WHERE f.due_on BETWEEN t.date AND t.date + ${SOON_DAYS})::int AS soon,
+       count(*) FILTER (WHERE f.due_on > t.date + ${SOON_DAYS})::int AS later
+     FROM first f CROSS JOIN (SELECT (now() AT TIME ZONE s.time_zone)::date AS date FROM sites s WHERE s.id = :siteId) t GROUP BY f.kind`,
+    { siteId, duties: TRAINING_DUTIES },
+  );
+
 type Found = Omit<DutyItem, "worker"> & { workerId: string | null; workerName: string | null };
 
 /** What is due, worst first: the longest overdue, then the soonest. */

@@ -27,7 +27,7 @@ export async function visibleFiles(actor: Actor, ids: readonly string[]): Promis
   if (ids.length === 0) return [];
   return rows<FileRow>(
     `SELECT f.id, f.name, f.media_type AS "mediaType", f.size_bytes::float8 AS "sizeBytes", encode(f.sha256, 'hex') AS sha256, f.uploaded_at AS "uploadedAt"
-     FROM files f WHERE f.id = ANY (CAST(:ids AS uuid[])) AND (
+     FROM files f WHERE f.id = ANY (CAST(:ids AS uuid[])) AND f.erased_at IS NULL AND (
        EXISTS (SELECT 1 FROM audit_events e WHERE e.subject_kind = 'file' AND e.subject_id = f.id AND e.actor_id = :userId)
        OR EXISTS (SELECT 1 FROM run_files x JOIN runs r ON r.id = x.run_id WHERE x.file_id = f.id AND ${visible(runPolicy, actor, "r")})
        OR EXISTS (SELECT 1 FROM instrument_calibrations c JOIN instruments i ON i.id = c.instrument_id

@@ -93,7 +93,7 @@ const gapQueries: Record<Kind, (actor: Actor) => string> = {
     notices("n.state IN ('sent', 'possibly-sent') AND n.sent_at > n.created_at + interval '1 day'"),
   "notice-not-sent": () =>
     notices(
-      "(n.state IN ('failed', 'possibly-sent', 'held') OR (n.state IN ('waiting', 'sending') AND (n.last_error IS NOT NULL OR n.not_before < now() - interval '1 day')))",
+      "(n.state IN ('failed', 'bounced', 'possibly-sent', 'held') OR (n.state IN ('waiting', 'sending') AND (n.last_error IS NOT NULL OR n.not_before < now() - interval '1 day')))",
     ),
   "not-assessed": () => `
     SELECT d.worker_id AS id, coalesce(d.reason, CASE WHEN d.result_id IS NULL THEN 'not-computed' END) AS note, d.date

@@ -26,8 +26,8 @@ type Found = Omit<
 
 /** The notice went; whether it arrived nobody knows where it is possibly sent. */
 export const LETTER_STATE = `CASE WHEN later.id IS NOT NULL AND a.id IS NULL THEN 'replaced' WHEN a.id IS NOT NULL THEN 'acknowledged'
-  WHEN l.notice_id IS NULL THEN 'to-print' WHEN n.state = 'withdrawn' THEN 'withdrawn' WHEN n.state = 'failed' THEN 'failed'
-  WHEN n.state IN ('sent', 'possibly-sent') THEN 'sent' ELSE 'waiting' END`;
+  WHEN l.notice_id IS NULL THEN 'to-print' WHEN n.state = 'withdrawn' THEN 'withdrawn' WHEN n.state IN ('failed', 'bounced') THEN 'failed'
+  WHEN n.state IN ('sent', 'possibly-sent', 'on-paper') THEN 'sent' ELSE 'waiting' END`;
 
 const LETTERS = `SELECT l.id, l.site_id AS "siteId", l.worker_id AS "workerId", w.name AS "workerName", w.employee_number AS "employeeNumber", ${LETTER_STATE} AS state,
     n.state AS "noticeState", l.due_on::text AS "dueOn", l.written_at AS "writtenAt", n.sent_at AS "sentAt",

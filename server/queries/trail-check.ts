@@ -84,6 +84,7 @@ interface Sealed {
   event: EventFacts | null;
   entry: EntryFacts | null;
   salt: Buffer | null;
+  isErased: boolean;
   recorded: unknown;
 }
 
@@ -101,10 +102,10 @@ export async function checkSeals(
     { organizationId, after },
   );
   const found = await rows<Sealed>(
-    `SELECT s.number::int AS number, s.hash, s.event_id IS NOT NULL AS "isOfEvent", v.salt, v.recorded,
+    `SELECT s.number::int AS number, s.hash, s.event_id IS NOT NULL AS "isOfEvent", v.salt, v.recorded, x.event_id IS NOT NULL AS "isErased",
        CASE WHEN e.id IS NOT NULL THEN ${EVENT_FACTS} END AS event, CASE WHEN n.id IS NOT NULL THEN ${ENTRY_FACTS} END AS entry
      FROM audit_seals s LEFT JOIN audit_events e ON e.id = s.event_id LEFT JOIN audit_values v ON v.event_id = e.id
-     LEFT JOIN trail_entries n ON n.id = s.entry_id LEFT JOIN trail_shapes p ON p.id = n.shape_id
+     LEFT JOIN erased_values x ON x.event_id = e.id LEFT JOIN trail_entries n ON n.id = s.entry_id LEFT JOIN trail_shapes p ON p.id = n.shape_id
      WHERE s.organization_id = :organizationId AND s.number > :after ORDER BY s.number LIMIT :limit`,
     { organizationId, after, limit },
   );
@@ -143,7 +144,9 @@ export async function checkSeals(
     if (!record) fault(sealed.isOfEvent ? "event-missing" : "entry-missing", sealed);
     else if (isLinked && !chainHash(hash, record).equals(sealed.hash)) fault("seal-broken", sealed);
     if (event) {
-      if (sealed.salt === null) erased += 1;
+      // An erasure says which values it took: the rows that say so are held against the trail themselves.
+      if (sealed.salt === null && sealed.isErased) erased += 1;
+      else if (sealed.salt === null) fault("values-removed", sealed);
       else if (valuesDigest(sealed.salt, sealed.recorded).toString("hex") !== event.digest)
         fault("values-changed", sealed);
     }

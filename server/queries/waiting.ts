@@ -61,7 +61,7 @@ export async function waitingFor(
   for (const notice of outgoing)
     byEntry.set(notice.entryId, [...(byEntry.get(notice.entryId) ?? []), notice]);
   const troubled = await findNotices(
-    `${ofSite} (n.state IN ('failed', 'possibly-sent') OR (n.state = 'waiting' AND n.last_error IS NOT NULL)) AND n.created_at > now() - interval '30 days' AND ${visible(noticePolicy, actor, "n")}`,
+    `${ofSite} (n.state IN ('failed', 'bounced', 'possibly-sent') OR (n.state = 'waiting' AND n.last_error IS NOT NULL)) AND n.created_at > now() - interval '30 days' AND ${visible(noticePolicy, actor, "n")}`,
     { siteId },
   );
   const due = await rows<{ id: string; name: string; dueOn: string }>(

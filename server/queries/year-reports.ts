@@ -36,6 +36,20 @@ const verdicts = (line: string, condition = "TRUE") =>
     )
     .join(", ")})`;
 
+/** One person over the days `d` that they are grouped by. */
+export const PERSON_OF_DAYS = `coalesce(bool_or(d.outside_db > ${IN_NOISE_DB}), FALSE) AS in_noise, bool_and(d.outside_db IS NULL) AS unknown,
+         coalesce(bool_or(d.grade IN ('measured-worker', 'measured-group')), FALSE) AS by_group,
+         bool_or(d.verdict_outside = 'cant-tell-yet' OR d.verdict_at_ear = 'cant-tell-yet' OR ${isNotAssessed}) AS undecided,
+         bool_or(d.verdict_at_ear = 'over') AS over_at_ear,
+         EXISTS (SELECT 1 FROM runs m WHERE m.worker_id = d.worker_id AND m.date >= make_date(:year, 1, 1)
+           AND m.date <= make_date(:year, 12, 31) AND NOT m.is_void AND NOT m.is_out AND m.task_id IS NULL) AS has_run`;
+
+/** Counts over such persons, for an object. */
+export const COUNTS_OF_PERSONS = `'inNoise', count(*) FILTER (WHERE in_noise), 'measured', count(*) FILTER (WHERE in_noise AND has_run),
+         'byGroup', count(*) FILTER (WHERE in_noise AND NOT has_run AND by_group),
+         'neverMeasured', count(*) FILTER (WHERE in_noise AND NOT has_run AND NOT by_group),
+         'undecided', count(*) FILTER (WHERE in_noise AND undecided)`;
+
 type DayFiguresOfYear = Pick<YearReportFigures, "people" | "days" | "histogram" | "findings">;
 
 /** People and days of a site's year, each counted once, and its findings. */
@@ -44,21 +58,13 @@ async function countsOf(actor: Actor, { siteId, year }: YearOfSite): Promise<Day
     `WITH ${yearDays(actor)},
      done AS (SELECT * FROM year_days WHERE result_id IS NOT NULL),
      person AS (
-       SELECT d.worker_id, coalesce(bool_or(d.outside_db > ${IN_NOISE_DB}), FALSE) AS in_noise, bool_and(d.outside_db IS NULL) AS unknown,
-         coalesce(bool_or(d.grade IN ('measured-worker', 'measured-group')), FALSE) AS by_group,
-         bool_or(d.verdict_outside = 'cant-tell-yet' OR d.verdict_at_ear = 'cant-tell-yet' OR ${isNotAssessed}) AS undecided,
-         bool_or(d.verdict_at_ear = 'over') AS over_at_ear,
-         EXISTS (SELECT 1 FROM runs m WHERE m.worker_id = d.worker_id AND m.date >= make_date(:year, 1, 1)
-           AND m.date <= make_date(:year, 12, 31) AND NOT m.is_void AND NOT m.is_out AND m.task_id IS NULL) AS has_run
+       SELECT d.worker_id, ${PERSON_OF_DAYS}
        FROM done d GROUP BY d.worker_id),
      steps AS (
        SELECT x.from_db, count(*) FILTER (WHERE x.line = 'outside')::int AS outside, count(*) FILTER (WHERE x.line = 'ear')::int AS at_ear
        FROM (SELECT ${STEP_DB} * floor(d.outside_db / ${STEP_DB}) AS from_db, 'outside' AS line FROM done d WHERE d.outside_db IS NOT NULL
          UNION ALL SELECT ${STEP_DB} * floor(d.at_ear_db / ${STEP_DB}), 'ear' FROM done d WHERE d.at_ear_db IS NOT NULL) x GROUP BY 1)
-     SELECT (SELECT json_build_object('withDay', count(*), 'inNoise', count(*) FILTER (WHERE in_noise), 'levelUnknown', count(*) FILTER (WHERE unknown),
-         'measured', count(*) FILTER (WHERE in_noise AND has_run), 'byGroup', count(*) FILTER (WHERE in_noise AND NOT has_run AND by_group),
-         'neverMeasured', count(*) FILTER (WHERE in_noise AND NOT has_run AND NOT by_group),
-         'undecided', count(*) FILTER (WHERE in_noise AND undecided), 'overAtEar', count(*) FILTER (WHERE in_noise AND over_at_ear)) FROM person) AS people,
+     SELECT (SELECT json_build_object('withDay', count(*), 'levelUnknown', count(*) FILTER (WHERE unknown), ${COUNTS_OF_PERSONS}, 'overAtEar', count(*) FILTER (WHERE in_noise AND over_at_ear)) FROM person) AS people,
        (SELECT json_build_object('count', count(*), 'outside', ${verdicts("verdict_outside")},
          'atEar', CASE WHEN bool_or(${judgesAtEar}) THEN ${verdicts("verdict_at_ear", judgesAtEar)} END) FROM done d) AS days,
        (SELECT coalesce(json_agg(json_build_object('fromDb', from_db, 'outside', outside, 'atEar', at_ear) ORDER BY from_db), '[]') FROM steps) AS histogram,

@@ -25,6 +25,9 @@ interface Subset {
 
 /** A font file as pdfkit holds it, as far as it is used here. */
 export interface Typeface {
+  /** Height over the line that letters stand on, in units of which `unitsPerEm` make a size. */
+  readonly ascent: number;
+  readonly unitsPerEm: number;
   hasGlyphForCodePoint(codePoint: number): boolean;
   getGlyph(id: number, codePoints?: readonly number[]): Glyph;
   createSubset(): Subset;
@@ -162,9 +165,24 @@ function complete(font: Typeface): void {
 
 const still = (xAdvance: number) => ({ xAdvance, yAdvance: 0, xOffset: 0, yOffset: 0 });
 
-function readTypeface(script: "latin" | "latin-ext"): Typeface {
+/** The application's own typeface first; names in letters that it lacks are in another of the same free licence. */
+const FILES = {
+  latin: ["atkinson-hyperlegible-next", "AtkinsonHyperlegibleNext"],
+  "latin-ext": ["atkinson-hyperlegible-next", "AtkinsonHyperlegibleNext"],
+  greek: ["noto-sans", "NotoSans"],
+  "greek-ext": ["noto-sans", "NotoSans"],
+  cyrillic: ["noto-sans", "NotoSans"],
+  "cyrillic-ext": ["noto-sans", "NotoSans"],
+} as const;
+
+/** A font file, by the characters that it holds. */
+export type Script = keyof typeof FILES;
+export const SCRIPTS = Object.keys(FILES) as Script[];
+
+function readTypeface(script: Script): Typeface {
+  const [family, name] = FILES[script];
   const path = createRequire(import.meta.url).resolve(
-    `@fontsource-variable/atkinson-hyperlegible-next/files/atkinson-hyperlegible-next-${script}-wght-normal.woff2`,
+    `@fontsource-variable/${family}/files/${family}-${script}-wght-normal.woff2`,
   );
   // The package that reads fonts is pdfkit's own: a document that goes nowhere hands it out.
   const scratch = new PDFDocument({ font: null as never, autoFirstPage: false });
@@ -173,14 +191,15 @@ function readTypeface(script: "latin" | "latin-ext"): Typeface {
   complete(font);
   const createSubset = font.createSubset.bind(font);
   font.createSubset = () => Object.assign(createSubset(), { _addGlyph: addOutline });
-  Object.defineProperty(font, "postscriptName", { value: `AtkinsonHyperlegibleNext-${script}` });
+  Object.defineProperty(font, "postscriptName", { value: `${name}-${script}` });
   return font;
 }
 
-export type Script = "latin" | "latin-ext";
+const read = new Map<Script, Typeface>();
 
-let read: Readonly<Record<Script, Typeface>> | undefined;
-
-/** The application's own letters, read once. */
-export const typefaces = (): Readonly<Record<Script, Typeface>> =>
-  (read ??= { latin: readTypeface("latin"), "latin-ext": readTypeface("latin-ext") });
+/** A font file, read once and not before a text needs it. */
+export function typeface(script: Script): Typeface {
+  const known = read.get(script) ?? readTypeface(script);
+  read.set(script, known);
+  return known;
+}

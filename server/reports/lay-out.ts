@@ -1,7 +1,7 @@
 import PDFDocument from "pdfkit";
 import type { Verdict } from "../../shared/acoustics/types";
-import type { Block, Cell, Column, Ink, LineLook, Pencil, Report } from "./blocks";
-import { type Script, typefaces } from "./fonts";
+import type { Block, Cell, Column, Ink, LineLook, Pencil, Report, Sheet } from "./blocks";
+import { type Script, typeface } from "./fonts";
 import { type Line, linesOf, type Run, runsOf } from "./letters-on-paper";
 
 type Doc = InstanceType<typeof PDFDocument>;
@@ -17,6 +17,15 @@ const BOTTOM = FOOT_TOP - 12;
 const GAP = 8;
 
 const SIZES = { title: 20, heading: 12.5, lead: 11, text: 9.5, cell: 8.5, id: 6.2, foot: 7.5 };
+/** For a reader who stands in a shop and not at a desk. */
+const LARGE_SIZES: typeof SIZES = {
+  ...SIZES,
+  title: 26,
+  heading: 14,
+  lead: 12.5,
+  text: 11.5,
+  cell: 10.5,
+};
 /** The letters come in one weight: a thin line round them makes them stronger. */
 const STRONG_LINE_PT = 0.26;
 
@@ -52,7 +61,7 @@ export async function layOut(report: Report): Promise<Doc> {
     autoFirstPage: false,
     font: null,
     info: {
-      Title: report.title,
+      Title: report.fileTitle ?? report.title,
       Author: report.author,
       Creator: "Dinward",
       Producer: "Dinward",
@@ -66,28 +75,43 @@ export async function layOut(report: Report): Promise<Doc> {
 
 class Pages {
   private y = TOP;
+  private sizes = SIZES;
   private readonly root: Structure;
+  /** The sheet's part of the document, to which blocks are added. */
+  private part: Structure;
+  /** Number of the first page of each sheet, from 0. */
+  private readonly firstPages: number[] = [];
+  private readonly registered = new Set<Script>();
   private readonly widths = new Map<string, number>();
 
   constructor(
     private readonly doc: Doc,
     private readonly report: Report,
   ) {
-    for (const [script, typeface] of Object.entries(typefaces()))
-      doc.registerFont(script, typeface as never);
     this.root = doc.struct("Document");
+    this.part = this.root;
     doc.addStructure(this.root);
-    this.addPage();
   }
 
   async write(): Promise<void> {
-    const { title, lead, blocks } = this.report;
-    this.rule(TOP - 12, 2.2);
-    this.paragraph("H1", title, { sizePt: SIZES.title }, 3);
-    this.paragraph("P", lead, { sizePt: SIZES.lead }, 10);
-    for (const block of blocks) await this.block(block);
+    const sheets = [this.report, ...(this.report.more ?? [])];
+    for (const sheet of sheets) await this.sheet(sheet);
     this.root.end();
-    this.feet();
+    for (const [index, sheet] of sheets.entries())
+      this.feet(sheet, this.firstPages[index]!, this.firstPages[index + 1]);
+  }
+
+  private async sheet({ language, title, lead, blocks, isLarge }: Sheet): Promise<void> {
+    this.firstPages.push(this.doc.bufferedPageRange().count);
+    this.addPage();
+    this.sizes = isLarge ? LARGE_SIZES : SIZES;
+    this.part = this.doc.struct("Sect", { lang: language });
+    this.root.add(this.part);
+    this.rule(TOP - 12, 2.2);
+    this.paragraph("H1", title, { sizePt: this.sizes.title }, 3);
+    this.paragraph("P", lead, { sizePt: this.sizes.lead }, 10);
+    for (const block of blocks) await this.block(block);
+    this.part.end();
   }
 
   private addPage(): void {
@@ -106,13 +130,13 @@ class Pages {
         // Not alone at the foot of a page.
         this.make(64);
         this.y += 8;
-        this.paragraph("H2", block.text, { sizePt: SIZES.heading, isStrong: true }, 4);
+        this.paragraph("H2", block.text, { sizePt: this.sizes.heading, isStrong: true }, 4);
         return;
       case "text":
         this.paragraph(
           "P",
           block.text,
-          { sizePt: SIZES.text, ink: block.isQuiet ? "muted" : "ink" },
+          { sizePt: this.sizes.text, ink: block.isQuiet ? "muted" : "ink" },
           5,
         );
         return;
@@ -125,14 +149,33 @@ class Pages {
       case "picture":
         this.picture(block);
         return;
+      case "checks":
+        this.checks(block.rows);
+        return;
+      case "blanks":
+        this.blanks(block);
+        return;
+      case "room":
+        this.make(block.heightPt + GAP);
+        this.artifact(() => this.frame(LEFT, this.y, WIDTH, block.heightPt, 0.6));
+        this.y += block.heightPt + GAP;
+        return;
     }
+  }
+
+  private font(script: Script, sizePt: number): Doc {
+    if (!this.registered.has(script)) {
+      this.doc.registerFont(script, typeface(script) as never);
+      this.registered.add(script);
+    }
+    return this.doc.font(script).fontSize(sizePt);
   }
 
   private width(text: string, script: Script, sizePt: number): number {
     const key = `${sizePt} ${script} ${text}`;
     const known = this.widths.get(key);
     if (known !== undefined) return known;
-    const width = this.doc.font(script).fontSize(sizePt).widthOfString(text);
+    const width = this.font(script, sizePt).widthOfString(text);
     this.widths.set(key, width);
     return width;
   }
@@ -149,11 +192,14 @@ class Pages {
   /** One line of text into whatever is marked now. */
   private draw(line: Line, x: number, y: number, { sizePt, ink = "ink", isStrong }: Look): void {
     const { doc } = this;
+    const { ascent, unitsPerEm } = typeface("latin");
     let at = x;
     for (const { text, script } of line.runs) {
-      doc.font(script).fontSize(sizePt).fillColor(INKS[ink]);
+      this.font(script, sizePt).fillColor(INKS[ink]);
       if (isStrong) doc.strokeColor(INKS[ink]).lineWidth(STRONG_LINE_PT);
-      doc.text(text, at, y, { lineBreak: false, fill: true, stroke: isStrong ?? false });
+      // All stand on the line of the first typeface, whatever their own has above it.
+      const baseline = (-ascent / unitsPerEm) * sizePt;
+      doc.text(text, at, y, { lineBreak: false, fill: true, stroke: isStrong ?? false, baseline });
       at += this.width(text, script, sizePt);
     }
   }
@@ -182,6 +228,10 @@ class Pages {
     doc.stroke().restore();
   }
 
+  private frame(x: number, y: number, width: number, height: number, linePt: number): void {
+    this.doc.lineWidth(linePt).strokeColor(INKS.ink).rect(x, y, width, height).stroke();
+  }
+
   /** A marked part of the page under a structure. */
   private marked(parent: Structure, tag: string, draw: () => void): void {
     parent.add(this.doc.markStructureContent(tag));
@@ -191,7 +241,7 @@ class Pages {
 
   private paragraph(tag: string, text: string, look: Look, afterPt: number): void {
     const structure = this.doc.struct(tag);
-    this.root.add(structure);
+    this.part.add(structure);
     const height = lineHeight(look.sizePt);
     let rest = this.lines(text, WIDTH, look.sizePt);
     while (rest.length > 0) {
@@ -211,12 +261,12 @@ class Pages {
 
   private facts(rows: readonly (readonly [string, string])[]): void {
     const labelWidth = WIDTH * 0.34;
-    const height = lineHeight(SIZES.text);
+    const height = lineHeight(this.sizes.text);
     const list = this.doc.struct("L");
-    this.root.add(list);
+    this.part.add(list);
     for (const [label, value] of rows) {
-      const labels = this.lines(label, labelWidth - GAP, SIZES.text);
-      const values = this.lines(value, WIDTH - labelWidth, SIZES.text);
+      const labels = this.lines(label, labelWidth - GAP, this.sizes.text);
+      const values = this.lines(value, WIDTH - labelWidth, this.sizes.text);
       this.make(Math.min(8, Math.max(labels.length, values.length)) * height + 3);
       const item = this.doc.struct("LI");
       list.add(item);
@@ -253,7 +303,7 @@ class Pages {
         if (part.length === 0) continue;
         this.marked(structure, tag, () => {
           for (const [index, line] of part.entries())
-            this.draw(line, x, this.y + index * height, { sizePt: SIZES.text, ink });
+            this.draw(line, x, this.y + index * height, { sizePt: this.sizes.text, ink });
         });
       }
       this.y += fit * height;
@@ -266,18 +316,19 @@ class Pages {
     columns,
     rows,
     empty,
+    isForm = false,
   }: Extract<Block, { kind: "table" }>): Promise<void> {
     if (rows.length === 0) {
-      this.paragraph("P", empty, { sizePt: SIZES.text, ink: "muted" }, 6);
+      this.paragraph("P", empty, { sizePt: this.sizes.text, ink: "muted" }, 6);
       return;
     }
     const placed = placeColumns(columns);
     const structure = this.doc.struct("Table", { alt: summary });
-    this.root.add(structure);
+    this.part.add(structure);
     this.make(60);
     this.tableHead(placed, structure);
     for (const [index, row] of rows.entries()) {
-      this.tableRow(placed, row, structure, index === rows.length - 1);
+      this.tableRow(placed, row, structure, { isLast: index === rows.length - 1, isForm });
       if (index % ROWS_AT_ONCE === 0) await others();
     }
     structure.end();
@@ -287,8 +338,8 @@ class Pages {
 
   /** The first names the columns to who hears the table read; on the pages after it it is only seen. */
   private tableHead(columns: readonly PlacedColumn[], table: Structure | null): void {
-    const height = lineHeight(SIZES.cell);
-    const heads = columns.map(({ head, widthPt }) => this.lines(head, widthPt, SIZES.cell));
+    const height = lineHeight(this.sizes.cell);
+    const heads = columns.map(({ head, widthPt }) => this.lines(head, widthPt, this.sizes.cell));
     const most = Math.max(...heads.map(({ length }) => length));
     this.rule(this.y, 1.6);
     const top = this.y + 4;
@@ -300,7 +351,7 @@ class Pages {
         const down = (most - lines.length) * height;
         for (const [place, line] of lines.entries())
           this.draw(line, startOf(column, line), top + down + place * height, {
-            sizePt: SIZES.cell,
+            sizePt: this.sizes.cell,
             ink: "muted",
           });
       };
@@ -322,13 +373,17 @@ class Pages {
     columns: readonly PlacedColumn[],
     cells: readonly (string | Cell)[],
     table: Structure,
-    isLast: boolean,
+    { isLast, isForm }: { isLast: boolean; isForm: boolean },
   ): void {
     const laid = columns.map((column, index) => this.layCell(column, cells[index] ?? ""));
     const most = Math.max(...laid.map(({ lines }) => lines.length));
-    const height = lineHeight(SIZES.cell);
+    const height = lineHeight(this.sizes.cell);
+    const tallPt = Math.max(
+      isForm ? FORM_ROW_PT : 0,
+      ...laid.map(({ lines, picture }) => lines.length * height + (picture?.heightPt ?? 0)),
+    );
     // A row stands on one page, unless it is longer than one.
-    if (this.y + most * height + 6 > BOTTOM) {
+    if (this.y + tallPt + 6 > BOTTOM) {
       this.rule(this.y, 0.8);
       this.addPage();
       this.tableHead(columns, null);
@@ -337,16 +392,32 @@ class Pages {
     table.add(row);
     const structures = laid.map(() => this.doc.struct("TD"));
     for (const structure of structures) row.add(structure);
+    const top = this.y;
+    for (const { column, picture } of laid)
+      if (picture) this.artifact(() => picture.draw(this.pencil(column.x, top, column.widthPt)));
+    if (isForm)
+      this.artifact(() => {
+        for (const { x } of columns.slice(1))
+          this.stroke(x - GAP / 2, top - 3, x - GAP / 2, top + tallPt + 3, {
+            ink: "hair",
+            widthPt: 0.5,
+          });
+      });
     for (let done = 0; done < most; ) {
       const fit = Math.min(most - done, Math.max(1, Math.floor((BOTTOM - this.y) / height)));
-      for (const [index, { column, lines, look, verdict, verdictLine }] of laid.entries()) {
+      for (const [index, cell] of laid.entries()) {
+        const { column, lines, look, picture, strong, verdict, verdictLine } = cell;
         const part = lines.slice(done, done + fit);
+        const under = done === 0 ? (picture?.heightPt ?? 0) : 0;
         this.marked(structures[index]!, "TD", () => {
           for (const [place, line] of part.entries()) {
             const isVerdict = verdict !== undefined && done + place === verdictLine;
-            const y = this.y + place * height;
+            const y = this.y + under + place * height;
             if (isVerdict) this.shape(verdict, column.x, y + 1.6);
-            this.draw(line, startOf(column, line) + (isVerdict ? SHAPE_PT : 0), y, look);
+            this.draw(line, startOf(column, line) + (isVerdict ? SHAPE_PT : 0), y, {
+              ...look,
+              isStrong: strong[done + place],
+            });
           }
         });
       }
@@ -359,6 +430,7 @@ class Pages {
     }
     for (const structure of structures) structure.end();
     row.end();
+    if (this.y > top) this.y = Math.max(this.y, top + tallPt);
     this.y += 3;
     if (!isLast) this.rule(this.y, 0.5, "hair");
     this.y += isLast ? 0 : 3;
@@ -367,24 +439,31 @@ class Pages {
   private layCell(column: PlacedColumn, given: string | Cell) {
     const cell: Cell = typeof given === "string" ? { lines: given.split("\n") } : given;
     const look: Look = {
-      sizePt: column.isId ? SIZES.id : SIZES.cell,
+      sizePt: column.isId ? this.sizes.id : this.sizes.cell,
       ink: column.isId ? "muted" : "ink",
-      isStrong: cell.isStrong,
     };
+    const isStrong = (index: number) =>
+      cell.isStrong === "first line" ? index === 0 : (cell.isStrong ?? false);
     let verdictLine = -1;
     const lines = cell.lines.flatMap((text, index) => {
       const isVerdict = cell.verdict !== undefined && index === (cell.verdictLine ?? 0);
       const room = column.widthPt - (isVerdict ? SHAPE_PT : 0);
       const laid = this.lines(text, room, look.sizePt);
-      return laid.map((line, place) => ({ line, isVerdict: isVerdict && place === 0 }));
+      return laid.map((line, place) => ({
+        line,
+        isStrong: isStrong(index),
+        isVerdict: isVerdict && place === 0,
+      }));
     });
     verdictLine = lines.findIndex(({ isVerdict }) => isVerdict);
     return {
       column,
       look,
+      picture: cell.picture,
       verdict: cell.verdict,
       verdictLine,
       lines: lines.map(({ line }) => line),
+      strong: lines.map((line) => line.isStrong),
     };
   }
 
@@ -412,37 +491,121 @@ class Pages {
       alt,
       bbox: [LEFT, top, LEFT + WIDTH, top + heightPt],
     } as object);
-    this.root.add(figure);
-    const look = { sizePt: SIZES.foot, ink: "muted" } as const;
-    const pencil: Pencil = {
-      widthPt: WIDTH,
-      line: (x1, y1, x2, y2, how) => this.stroke(LEFT + x1, top + y1, LEFT + x2, top + y2, how),
-      box: (x, y, width, height, ink) =>
-        void this.doc.rect(LEFT + x, top + y, width, height).fill(INKS[ink]),
-      text: (text, x, y, align = "left") => {
-        const runs = runsOf(text);
-        const widthPt = this.measure(look.sizePt)(runs);
-        const back = align === "left" ? 0 : align === "right" ? widthPt : widthPt / 2;
-        this.draw({ runs, widthPt }, LEFT + x - back, top + y, look);
-      },
-    };
-    this.marked(figure, "Figure", () => draw(pencil));
+    this.part.add(figure);
+    this.marked(figure, "Figure", () => draw(this.pencil(LEFT, top, WIDTH)));
     figure.end();
     this.y = top + heightPt + 6;
   }
 
-  private feet(): void {
-    const { foot, pageOf } = this.report;
-    const { count } = this.doc.bufferedPageRange();
-    const look: Look = { sizePt: SIZES.foot, ink: "muted" };
-    const height = lineHeight(SIZES.foot);
+  private pencil(left: number, top: number, widthPt: number): Pencil {
+    const look = { sizePt: this.sizes.foot, ink: "muted" } as const;
+    return {
+      widthPt,
+      line: (x1, y1, x2, y2, how) => this.stroke(left + x1, top + y1, left + x2, top + y2, how),
+      box: (x, y, width, height, ink) =>
+        void this.doc.rect(left + x, top + y, width, height).fill(INKS[ink]),
+      shape: (corners, ink) =>
+        void this.doc.polygon(...corners.map(([x, y]) => [left + x, top + y])).fill(INKS[ink]),
+      text: (text, x, y, align = "left") => {
+        const runs = runsOf(text);
+        const textPt = this.measure(look.sizePt)(runs);
+        const back = align === "left" ? 0 : align === "right" ? textPt : textPt / 2;
+        this.draw({ runs, widthPt: textPt }, left + x - back, top + y, look);
+      },
+    };
+  }
+
+  private checks(rows: Extract<Block, { kind: "checks" }>["rows"]): void {
+    const { doc } = this;
+    const height = lineHeight(this.sizes.text);
+    const list = doc.struct("L");
+    this.part.add(list);
+    for (const { text, answers = [] } of rows) {
+      const indentPt = answers.length === 0 ? TICK_PT + 8 : 0;
+      const answersPt = answers.length * ANSWER_PT;
+      const lines = this.lines(text, WIDTH - indentPt - answersPt, this.sizes.text);
+      this.make(lines.length * height + 6);
+      const [item, body] = [doc.struct("LI"), doc.struct("LBody")];
+      list.add(item);
+      item.add(body);
+      if (answers.length === 0) this.tick(LEFT, this.y + (height - TICK_PT) / 2, false);
+      this.marked(body, "LBody", () => {
+        for (const [index, line] of lines.entries())
+          this.draw(line, LEFT + indentPt, this.y + index * height, { sizePt: this.sizes.text });
+      });
+      for (const [index, { text: answer, isTicked }] of answers.entries()) {
+        const x = LEFT + WIDTH - answersPt + index * ANSWER_PT;
+        this.tick(x, this.y + (height - TICK_PT) / 2, isTicked);
+        // Who hears it read is told by a sign which of them is ticked.
+        const span = doc.struct("Span", { actual: `${isTicked ? "☒" : "☐"} ${answer}` });
+        body.add(span);
+        const [line] = this.lines(answer, ANSWER_PT - TICK_PT, this.sizes.text);
+        this.marked(span, "Span", () => {
+          if (line) this.draw(line, x + TICK_PT + 5, this.y, { sizePt: this.sizes.text });
+        });
+        span.end();
+      }
+      body.end();
+      item.end();
+      this.y += lines.length * height + 3;
+      if (answers.length > 0) this.rule(this.y - 1, 0.5, "hair");
+      this.y += 2;
+    }
+    list.end();
+    this.y += 5;
+  }
+
+  private tick(x: number, y: number, isTicked: boolean): void {
+    this.artifact(() => {
+      this.frame(x, y, TICK_PT, TICK_PT, 0.9);
+      if (!isTicked) return;
+      const [left, top, right, bottom] = [x + 2, y + 2, x + TICK_PT - 2, y + TICK_PT - 2];
+      this.stroke(left, top, right, bottom);
+      this.stroke(left, bottom, right, top);
+    });
+  }
+
+  private blanks({ blanks, roomPt }: Extract<Block, { kind: "blanks" }>): void {
+    const between = 20;
+    const widthPt = (WIDTH - between * (blanks.length - 1)) / blanks.length;
+    const height = lineHeight(this.sizes.cell);
+    const laid = blanks.map(({ label, value = "" }, index) => ({
+      x: LEFT + index * (widthPt + between),
+      label: this.lines(label, widthPt, this.sizes.cell),
+      value: value === "" ? [] : this.lines(value, widthPt, this.sizes.text),
+    }));
+    const most = (name: "label" | "value") => Math.max(...laid.map((one) => one[name].length));
+    const above = Math.max(roomPt, most("value") * lineHeight(this.sizes.text) + 4);
+    this.make(above + most("label") * height + 8);
+    const line = this.y + above;
+    for (const { x, label, value } of laid) {
+      this.artifact(() => this.stroke(x, line, x + widthPt, line, { widthPt: 0.8 }));
+      const paragraph = this.doc.struct("P");
+      this.part.add(paragraph);
+      this.marked(paragraph, "P", () => {
+        for (const [index, one] of label.entries())
+          this.draw(one, x, line + 2 + index * height, { sizePt: this.sizes.cell, ink: "muted" });
+        for (const [index, one] of value.entries())
+          this.draw(one, x, line - (value.length - index) * lineHeight(this.sizes.text), {
+            sizePt: this.sizes.text,
+          });
+      });
+      paragraph.end();
+    }
+    this.y = line + most("label") * height + 8;
+  }
+
+  private feet({ foot, pageOf }: Sheet, first: number, next?: number): void {
+    const count = (next ?? this.doc.bufferedPageRange().count) - first;
+    const look: Look = { sizePt: this.sizes.foot, ink: "muted" };
+    const height = lineHeight(this.sizes.foot);
     for (let page = 0; page < count; page += 1) {
-      this.doc.switchToPage(page);
-      const number = this.lines(pageOf(page + 1, count), WIDTH, SIZES.foot)[0]!;
+      this.doc.switchToPage(first + page);
+      const number = this.lines(pageOf(page + 1, count), WIDTH, this.sizes.foot)[0]!;
       this.artifact(() => {
         this.stroke(LEFT, FOOT_TOP, LEFT + WIDTH, FOOT_TOP, { widthPt: 0.8 });
         for (const [index, text] of foot.entries()) {
-          const [line] = this.lines(text, WIDTH - number.widthPt - GAP, SIZES.foot);
+          const [line] = this.lines(text, WIDTH - number.widthPt - GAP, this.sizes.foot);
           if (line) this.draw(line, LEFT, FOOT_TOP + 5 + index * height, look);
         }
         this.draw(number, LEFT + WIDTH - number.widthPt, FOOT_TOP + 5, look);
@@ -454,6 +617,11 @@ class Pages {
 /** Rows drawn before other requests get their turn. */
 const ROWS_AT_ONCE = 10;
 const others = () => new Promise((resolve) => setImmediate(resolve));
+
+/** Lowest row of a table to write in, of a box to tick, and how far the answers after a text stand apart. */
+const FORM_ROW_PT = 20;
+const TICK_PT = 9.5;
+const ANSWER_PT = 52;
 
 /** Room of a verdict's shape. */
 const SHAPE_PT = 11;

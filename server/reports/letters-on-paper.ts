@@ -1,4 +1,4 @@
-import { type Script, typefaces } from "./fonts";
+import { SCRIPTS, type Script, typeface } from "./fonts";
 
 /** A part of a text that one font file holds. */
 export interface Run {
@@ -15,22 +15,23 @@ export interface Line {
 const UNSEEN = /[\u200e\u200f\u2066-\u2069]/g;
 const scripts = new Map<string, Script>();
 
-/** The file that has a character, the first where neither has. The same few characters come again and again. */
+/** The file that has a character, the first where none has. The same few characters come again and again. */
 function scriptOf(character: string): Script {
   const known = scripts.get(character);
   if (known) return known;
-  const { latin, "latin-ext": more } = typefaces();
   const code = character.codePointAt(0)!;
-  const isMore = !latin.hasGlyphForCodePoint(code) && more.hasGlyphForCodePoint(code);
-  const script = isMore ? "latin-ext" : "latin";
+  const script = SCRIPTS.find((one) => typeface(one).hasGlyphForCodePoint(code)) ?? SCRIPTS[0]!;
   scripts.set(character, script);
   return script;
 }
 
-/** A text in runs of one font file each. */
+/** A text in runs of one font file each; an accent written as a sign of its own goes with its letter where there is one for both. */
 export function runsOf(text: string): Run[] {
   const runs: Run[] = [];
-  for (const character of text.replace(UNSEEN, "").replace(/[\u202f\t\r\n]/g, "\u00a0")) {
+  for (const character of text
+    .normalize("NFC")
+    .replace(UNSEEN, "")
+    .replace(/[\u202f\t\r\n]/g, "\u00a0")) {
     const script = scriptOf(character);
     const last = runs.at(-1);
     if (last?.script === script) runs[runs.length - 1] = { script, text: last.text + character };

@@ -1,6 +1,6 @@
 import { z } from "zod";
 import { IdParams } from "../../shared/schemas/common";
-import { EntryNotices, NoticeText } from "../../shared/schemas/notice";
+import { EntryNotices, NoticeAction, NoticeText } from "../../shared/schemas/notice";
 import { handleNotices } from "../commands/handle-notice";
 import type { Config } from "../config";
 import { noticeMail } from "../jobs/send-notice";
@@ -13,7 +13,7 @@ import { may, noticePolicy } from "../policies";
 import { entryNotices } from "../queries/entry-notices";
 
 const EntryParams = z.object({ entryId: z.uuid() });
-const EntryAction = z.object({ action: z.enum(["hold", "send-now"]) });
+const EntryAction = z.object({ action: NoticeAction });
 
 /** The notices of an entry, if they are this officer's to see and handle. */
 async function noticesOf(actor: Actor, entryId: string): Promise<string[]> {

@@ -34,7 +34,7 @@ export function defineProtectorChoiceRoutes(): void {
   endpoint.get(
     "/issue-slips",
     {
-      summary: "What each of these workers has to wear where, to be printed and signed",
+      summary: "What each of these workers has to wear where, and the level under it",
       may: may.readFitting,
       query: SlipsQuery,
       reply: IssueSlips,

@@ -1,3 +1,4 @@
+import { SlipsPdfQuery } from "../../shared/schemas/choice";
 import { IdParams } from "../../shared/schemas/common";
 import {
   ExposureRecordQuery,
@@ -18,6 +19,8 @@ import { exposureRecordPolicy, may, sitePolicy, surveyPolicy, yearReportPolicy }
 import { findWorkerDetail } from "../queries/workers";
 import { findYearReport, issuedFigures, listYearReports } from "../queries/year-reports";
 import { exposureRecord } from "../reports/exposure-record";
+import { fieldSheet } from "../reports/field-sheet";
+import { issueSlipsReport } from "../reports/issue-slips";
 import { answerPdf, plainName } from "../reports/pdf";
 import { surveyReport } from "../reports/survey-report";
 import { yearReport } from "../reports/year-report";
@@ -60,6 +63,39 @@ export function defineReportRoutes(): void {
           name: plainName("survey", survey.name),
         };
       }),
+  );
+
+  endpoint.get(
+    "/surveys/:id/field-sheet.pdf",
+    {
+      summary: "Sheets to carry along for a survey, one for each task or worker, to print",
+      may: may.readMeasuring,
+      params: IdParams,
+      streams: true,
+    },
+    ({ actor, params, response }) =>
+      answerPdf(actor, response, async () => {
+        const survey = await findVisible(Survey, surveyPolicy, params.id, actor);
+        return {
+          report: await fieldSheet(actor, survey.id),
+          name: plainName("field-sheet", survey.name),
+        };
+      }),
+  );
+
+  endpoint.get(
+    "/issue-slips.pdf",
+    {
+      summary: "What each of these workers has to wear where, to be printed and signed",
+      may: may.readFitting,
+      query: SlipsPdfQuery,
+      streams: true,
+    },
+    ({ actor, query, response }) =>
+      answerPdf(actor, response, async () => ({
+        report: await issueSlipsReport(actor, query.workerIds, query.language),
+        name: "issue-slips",
+      })),
   );
 
   endpoint.get(

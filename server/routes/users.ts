@@ -1,8 +1,15 @@
 import { IdParams } from "../../shared/schemas/common";
 import { DigestInput, DigestView } from "../../shared/schemas/digest";
+import {
+  MailChoiceInput,
+  MailChoiceView,
+  SentFilter,
+  SentPage,
+} from "../../shared/schemas/mail-choice";
 import { OwnSettings, UserChange, UserInput, UserList, UserView } from "../../shared/schemas/user";
 import { changeUser } from "../commands/change-user";
 import { chooseDigest } from "../commands/choose-digest";
+import { chooseMails } from "../commands/choose-mails";
 import { createUser } from "../commands/create-user";
 import { revokeUser } from "../commands/revoke-user";
 import { setOwnLanguage } from "../commands/set-own-language";
@@ -15,6 +22,7 @@ import { User } from "../models/user";
 import { may, userPolicy } from "../policies";
 import { presentUser } from "../presenters/user";
 import { ownDigest } from "../queries/digests";
+import { ownMails, sentToMe } from "../queries/mail-choices";
 import { listUsers } from "../queries/users";
 
 const view = async (actor: Actor, id: string) =>
@@ -96,6 +104,42 @@ export function defineUserRoutes(): void {
       await chooseDigest(actor, body, ifMatch);
       return ownDigest(actor);
     },
+  );
+
+  endpoint.get(
+    "/me/mails",
+    {
+      summary: "Which mails one gets, and why some can't be switched off",
+      may: may.receiveMails,
+      reply: MailChoiceView,
+    },
+    ({ actor }) => ownMails(actor),
+  );
+
+  endpoint.put(
+    "/me/mails",
+    {
+      summary: "Choose the mails that one does without",
+      may: may.receiveMails,
+      body: MailChoiceInput,
+      reply: MailChoiceView,
+      needsRevision: true,
+    },
+    async ({ actor, body, ifMatch }) => {
+      await chooseMails(actor, body, ifMatch);
+      return ownMails(actor);
+    },
+  );
+
+  endpoint.get(
+    "/me/sent",
+    {
+      summary: "What was sent to oneself, as it was sent, the latest first",
+      may: may.receiveMails,
+      query: SentFilter,
+      reply: SentPage,
+    },
+    ({ actor, query }) => sentToMe(actor, query),
   );
 
   endpoint.put(

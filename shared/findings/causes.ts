@@ -1,3 +1,4 @@
+import { judgedAtEar } from "../acoustics/protection/judged-at-ear";
 import type {
   Criterion,
   CriterionResult,
@@ -129,7 +130,7 @@ export function findCauses(
       {
         taskName: deciding.task.name,
         protector: nameOf(protection),
-        wornDb: deciding.atEar.wornDb,
+        wornDb: evaluation.counted ? evaluation.counted.whileWornDb : deciding.atEar.wornDb,
         outsideDb: deciding.atEar.outsideDb,
       },
       { useKey: keyOfUse(protection) },
@@ -145,10 +146,13 @@ export function findCauses(
     );
   const short = worn.filter((one) => isWornTooShort(one, governing, input));
   if (short.length > 0) {
-    const worst = short.reduce((a, b) =>
+    const judged = short.map(({ task, atEar }) => ({
+      task,
+      atEar: judgedAtEar(atEar, task.protection, input.site),
+    }));
+    const { task, atEar } = judged.reduce((a, b) =>
       (b.atEar.inTaskDb ?? 0) > (a.atEar.inTaskDb ?? 0) ? b : a,
     );
-    const { task, atEar } = worst;
     add(
       "not-worn-long-enough",
       {
@@ -231,7 +235,7 @@ function isWornTooShort(
 ): boolean {
   const targetDb =
     input.personalTargetDb ?? governing.protection.targetDb ?? actionValueDb(governing);
-  const { wornDb, inTaskDb } = atEar;
+  const { wornDb, inTaskDb } = judgedAtEar(atEar, task.protection, input.site);
   if (
     targetDb === null ||
     wornDb === null ||

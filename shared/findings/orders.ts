@@ -13,7 +13,7 @@ export const ORDER_KINDS: readonly FindingKind[] = [
 ];
 
 /** What is put right by what the worker wears: together they ask for one thing. */
-const WORN_KINDS: ReadonlySet<FindingKind> = new Set([
+export const WORN_KINDS: ReadonlySet<FindingKind> = new Set([
   "no-protector",
   "over-limit-at-ear",
   "dual-protection",

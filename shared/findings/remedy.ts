@@ -2,6 +2,7 @@ import { evaluateDay } from "../acoustics/day";
 import { lawAtEar } from "../acoustics/outside-criterion";
 import { isInNoise } from "../acoustics/protection/at-ear";
 import { ProtectorChoice } from "../acoustics/protection/choose-protector";
+import { judgedAtEar } from "../acoustics/protection/judged-at-ear";
 import { noisesOf, wornMinOf } from "../acoustics/protection/noises";
 import type {
   DayEvaluation,
@@ -46,6 +47,9 @@ export interface LeftToDo {
 
 export type Proposal = { remedy: Remedy; left: null } | { remedy: null; left: LeftToDo };
 
+/** What is known of single models on this worker, by model: the verdict would rest on it. */
+export type OnWorker = ReadonlyMap<string, Pick<Protection, "ownFitDb" | "activeCheckPassed">>;
+
 /** Best first. A protector that takes too much is a fault as well. */
 const ORDER: readonly ProtectorWord[] = ["good", "enough", "just-enough", "strong-side"];
 const FAULTY = ORDER.length;
@@ -58,15 +62,17 @@ const MOST_PLANS = 40;
  * What to give a worker so that this day would have been right, worn throughout in every task in noise: one protector
  * for the whole day where one is enough, the first of them in the order of `ProtectorChoice`; else the fewest by task.
  * Where the worker's own would do if they were worn throughout, or nothing on the register does, it says what is left. Null where the rule has no word for a protector,
- * or no task of the day is in noise.
+ * or no task of the day is in noise. What a protector brings is judged as a day is: by the own fit where there is one, the
+ * active part on where the site credits it and its check passed.
  */
 export function proposeRemedy(
   input: DayInput,
   governing: RuleSetVersion,
   register: readonly ProtectorData[],
+  onWorker: OnWorker = new Map(),
 ): Proposal | null {
   if (governing.protection.adequacy === "not-stated") return null;
-  return new Search(input, governing).find(register);
+  return new Search(input, governing, onWorker).find(register);
 }
 
 /** A task of the day, however often it was done. */
@@ -98,11 +104,14 @@ interface Plan {
 class Search {
   private readonly noises: readonly Noise[];
   private readonly hasTaskWords: boolean;
+  private readonly onWorker: OnWorker;
 
   constructor(
     private readonly input: DayInput,
     private readonly governing: RuleSetVersion,
+    onWorker: OnWorker,
   ) {
+    this.onWorker = new Map([...onWorker, ...heldOnWorker(input)]);
     this.noises = noiseByTask(input);
     this.hasTaskWords = governing.protection.adequacy === "en-458";
   }
@@ -145,11 +154,16 @@ class Search {
     const worst = asWorked.tasks
       .filter(({ isWorn, wornPct }) => isWorn && wornPct !== null && wornPct < 100)
       .reduce<TaskAtEar | null>(
-        (a, b) => (a && (a.inTaskDb ?? 0) >= (b.inTaskDb ?? 0) ? a : b),
+        (a, b) => (a && this.inTaskDb(a) >= this.inTaskDb(b) ? a : b),
         null,
       );
     const noise = this.noises.find(({ timedIds }) => worst && timedIds.has(worst.timedTaskId));
     return { remedy: null, left: leftIn("wear-throughout", noise) };
+  }
+
+  private inTaskDb(atEar: TaskAtEar): number {
+    const noise = this.noises.find(({ timedIds }) => timedIds.has(atEar.timedTaskId));
+    return judgedAtEar(atEar, noise?.held ?? null, this.input.site).inTaskDb ?? 0;
   }
 
   /** No fault of the protector, and no level limit at the ear passed or left open by the uncertainty. */
@@ -166,7 +180,7 @@ class Search {
   }
 
   private option(inner: ProtectorData, outer: ProtectorData | null): Option {
-    const protection = protectionOf(inner, outer);
+    const protection = this.protectionOf(inner, outer);
     const evaluation = evaluateDay(
       wearing(this.input, () => protection),
       this.governing,
@@ -174,7 +188,9 @@ class Search {
     );
     const inTask = new Map(
       this.noises.map(({ taskId, timedIds }) => {
-        const own = evaluation.tasks.filter(({ timedTaskId }) => timedIds.has(timedTaskId));
+        const own = evaluation.tasks
+          .filter(({ timedTaskId }) => timedIds.has(timedTaskId))
+          .map((task) => judgedAtEar(task, protection, this.input.site));
         return [
           taskId,
           {
@@ -190,7 +206,19 @@ class Search {
     return { inner, outer, modelIds, evaluation, inTask };
   }
 
-  private rankInTask({ word, wornDb }: TaskAtEar): number {
+  private protectionOf(inner: ProtectorData, outer: ProtectorData | null): Protection {
+    const own = outer === null ? this.onWorker.get(inner.modelId) : undefined;
+    return {
+      assignmentId: null,
+      inner,
+      outer,
+      combinationBands: null,
+      ownFitDb: own?.ownFitDb ?? null,
+      activeCheckPassed: own?.activeCheckPassed ?? false,
+    };
+  }
+
+  private rankInTask({ word, wornDb }: Pick<TaskAtEar, "word" | "wornDb">): number {
     if (!this.hasTaskWords) return wornDb === null ? FAULTY : 0;
     const rank = word === null ? -1 : ORDER.indexOf(word);
     return rank < 0 ? FAULTY : rank;
@@ -222,7 +250,18 @@ class Search {
       personalTargetDb: input.personalTargetDb,
       wornGear: [],
       wornMin: wornMinOf(noises),
-      fits: new Map(),
+      fits: new Map(
+        [...this.onWorker].flatMap(([modelId, { ownFitDb }]) =>
+          ownFitDb === null
+            ? []
+            : [[modelId, { parDb: ownFitDb, hasPassed: null, needDb: null, testedOn: input.date }]],
+        ),
+      ),
+      creditedModelIds: new Set(
+        [...this.onWorker].flatMap(([modelId, { activeCheckPassed }]) =>
+          input.site.creditsActivePart && activeCheckPassed ? [modelId] : [],
+        ),
+      ),
     });
     return options.find(({ inner }) => inner.modelId === first?.modelId);
   }
@@ -344,12 +383,15 @@ class Search {
     const of = new Map(
       this.noises.map(({ taskId }, at) => {
         const { inner, outer } = worn[at]!;
-        return [taskId, protectionOf(inner, outer)] as const;
+        return [taskId, this.protectionOf(inner, outer)] as const;
       }),
     );
     return evaluateDay(
       // Outside noise it counts only for somebody who must wear one whatever the level.
-      wearing(this.input, ({ taskId }) => of.get(taskId) ?? protectionOf(main.inner, main.outer)),
+      wearing(
+        this.input,
+        ({ taskId }) => of.get(taskId) ?? this.protectionOf(main.inner, main.outer),
+      ),
       this.governing,
       [],
     );
@@ -372,11 +414,12 @@ class Search {
         taskIds: tasksOf(option).map(({ taskId }) => taskId),
         taskNames: tasksOf(option).map(({ name }) => name),
       })),
-      atEarDb: evaluation.atEarDb,
+      atEarDb: evaluation.counted ? evaluation.counted.atEarDb : evaluation.atEarDb,
       word: evaluation.word as ProtectorWord,
-      wornDb:
-        evaluation.tasks.find(({ timedTaskId }) => timedTaskId === evaluation.decidingTaskId)
-          ?.wornDb ?? null,
+      wornDb: evaluation.counted
+        ? evaluation.counted.whileWornDb
+        : (evaluation.tasks.find(({ timedTaskId }) => timedTaskId === evaluation.decidingTaskId)
+            ?.wornDb ?? null),
     };
     return { remedy, left: null };
   }
@@ -408,7 +451,7 @@ class Search {
   }
 }
 
-/** A finding asks what would have put the noise right; gear, stock and fit are asked where one is given out. */
+/** A finding asks what would have put the noise right; gear and stock are asked where one is given out. */
 const NOTHING_BESIDE = {
   combinationBands: null,
   worksWith: { helmet: null, glasses: null, respirator: null },
@@ -457,14 +500,15 @@ function noiseByTask(input: DayInput): Noise[] {
 const modelsOf = ({ inner, outer }: Protection): string[] =>
   outer ? [inner.modelId, outer.modelId] : [inner.modelId];
 
-const protectionOf = (inner: ProtectorData, outer: ProtectorData | null): Protection => ({
-  assignmentId: null,
-  inner,
-  outer,
-  combinationBands: null,
-  ownFitDb: null,
-  activeCheckPassed: false,
-});
+/** What the day itself knows of the single devices that are worn in it. */
+const heldOnWorker = ({ shifts }: DayInput): (readonly [string, Protection])[] =>
+  shifts.flatMap(({ tasks }) =>
+    tasks.flatMap(({ protection }) =>
+      protection && protection.outer === null
+        ? [[protection.inner.modelId, protection] as const]
+        : [],
+    ),
+  );
 
 const wearing = (
   input: DayInput,

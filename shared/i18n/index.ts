@@ -90,3 +90,10 @@ export async function activateLocale(i18n: I18n, locale: Locale): Promise<void> 
   } while ([...parts.keys()].some((part) => !loaded.includes(part)));
   i18n.loadAndActivate({ locale, messages });
 }
+
+/** Scripts that are written from the right. */
+const FROM_THE_RIGHT: ReadonlySet<string | undefined> = new Set(["Arab", "Hebr", "Syrc", "Thaa"]);
+
+/** From which side a language is written, by the script that it is mostly written in. */
+export const directionOf = (language: string): "ltr" | "rtl" =>
+  FROM_THE_RIGHT.has(new Intl.Locale(language).maximize().script) ? "rtl" : "ltr";

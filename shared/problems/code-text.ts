@@ -17,6 +17,10 @@ export function codeText(i18n: I18n, code: string, params: ProblemParams): strin
       return i18n.t(
         "The person of this token has left or has no role any more. The token opens nothing.",
       );
+    case "hook-unsigned":
+      return i18n.t("None of the mail server’s secrets signed this report. Nothing was changed.");
+    case "hook-stale":
+      return i18n.t("This report is not of now. Nothing was changed; check both clocks.");
     case "token-scope":
       return i18n.t("This token was not made for that. Nothing was changed.");
     case "access-ended":
@@ -31,6 +35,8 @@ export function codeText(i18n: I18n, code: string, params: ProblemParams): strin
       return i18n.t("This is not yours to do. Nothing was changed.");
     case "own-grant":
       return i18n.t("You can’t change your own roles. Ask another administrator.");
+    case "own-proposal":
+      return i18n.t("You proposed this yourself. Somebody else has to approve it.");
     case "not-found":
       return i18n.t("It does not exist, or it is not yours to see.");
     case "stale":

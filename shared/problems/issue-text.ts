@@ -158,6 +158,10 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("A standard deviation can’t be negative: type it without the minus.");
     case "too-many-bands":
       return i18n.t("This line has more values than there are bands. Take the others out.");
+    case "other-63-hz":
+      return i18n.t(
+        "It has other bands than the rest: eight values are read from 63 Hz on, seven from 125 Hz. Give every line the same.",
+      );
     case "band-missing":
       return i18n.t(
         "Mean and deviation of a band belong together: type both, or leave both empty.",
@@ -273,6 +277,10 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("Say by when it is to be done, or when it was done.");
     case "employee-numbers-unknown":
       return i18n.t("Nobody at this site has {numbers}.", { numbers: String(params.numbers) });
+    case "mail-required":
+      return i18n.t("This mail always comes.");
+    case "not-json":
+      return i18n.t("This is not JSON.");
     case "site-stays":
       return i18n.t("It stays with its site: strike it out and enter it at the other.");
     case "not-in-crew":
@@ -289,6 +297,14 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("Choose another crew of the site that is in use.");
     case "not-of-this-site":
       return i18n.t("This person has no part in the site’s findings.");
+    case "not-a-clock-here":
+      return i18n.t("No site has this clock. Choose one of those on the list.");
+    case "not-a-worker-here":
+      return i18n.t("This worker is not of this site.");
+    case "not-erasable":
+      return i18n.t(
+        "This person is not due any more, is held, or stands in another proposal. Look at the list again.",
+      );
     case "flat-or-bands":
       return i18n.t("Say how much less in one figure, or by bands, not both.");
     case "task-without-bands":
@@ -420,6 +436,8 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("That test is not the other ear’s of the same day and protector.");
     case "tone-unknown":
       return i18n.t("There is no tone of this channel.");
+    case "not-at-site":
+      return i18n.t("Nobody at this site works or worked for that employer.");
     default:
       return i18n.t("This needs another look.");
   }

@@ -1,6 +1,6 @@
 import { z } from "zod";
 import { PageQuery, pageOf } from "./common";
-import { RoleName } from "./session";
+import { SessionRole } from "./session";
 
 /** The part of somebody's record that was read. */
 export const ReadKind = z.enum([
@@ -21,11 +21,13 @@ export type ReadKind = z.infer<typeof ReadKind>;
 export const ReaderView = z.object({
   userId: z.uuid(),
   name: z.string(),
-  role: z.enum([...RoleName.options, "visitor"]),
+  role: SessionRole,
   /** Null: at all sites. */
   siteName: z.string().nullable(),
   /** A supervisor's, of which the worker is today. */
   crewName: z.string().nullable(),
+  /** Of somebody of an outside employer. */
+  employerName: z.string().nullable(),
   /** A visitor's. */
   year: z.number().nullable(),
   endsAt: z.string().nullable(),

@@ -1,5 +1,5 @@
 import { z } from "zod";
-import { IsoDate } from "./common";
+import { IsoDate, Language } from "./common";
 import { DayFigures } from "./finding";
 import { Candidate, Gear } from "./fit";
 import { ChangePreview } from "./site";
@@ -124,6 +124,9 @@ export const SlipsQuery = z.object({
     .transform((text) => text.split(",").filter(Boolean))
     .pipe(z.array(z.uuid()).min(1).max(60)),
 });
+
+/** Without a language: each worker's own. */
+export const SlipsPdfQuery = SlipsQuery.extend({ language: Language.optional() });
 
 /** What a worker gets with the protectors: each with where it is worn, and the level under it. */
 export const IssueSlip = z.object({

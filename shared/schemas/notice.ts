@@ -8,8 +8,15 @@ export const NoticeState = z.enum([
   "possibly-sent",
   "failed",
   "withdrawn",
+  /** Taken by the mail server and come back. */
+  "bounced",
+  /** Told by hand, on paper or in person. */
+  "on-paper",
 ]);
 export type NoticeState = z.infer<typeof NoticeState>;
+
+export const NoticeAction = z.enum(["hold", "send-now", "send-again", "give-on-paper"]);
+export type NoticeAction = z.infer<typeof NoticeAction>;
 
 export const NoticeRow = z.object({
   id: z.uuid(),

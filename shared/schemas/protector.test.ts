@@ -105,6 +105,48 @@ describe("what a certificate can't say is refused at its field, in words of its 
     expect(found).toMatchObject([{ path: "usLabel.meanDb", says: "All 9 values are needed." }]);
   });
 
+  test("all that is wrong is said at once, each fault at its own field", () => {
+    const sdDb = [3, 3, -3, 3, null, 3, 3, 3];
+    const found = issuesOf({
+      snrDb: 15,
+      hDb: 30,
+      mDb: 24,
+      lDb: 18,
+      bands: { meanDb: [...same(25).slice(0, 5), null, 25, 25], sdDb },
+      percentile: { mostDb: 25, fewDb: 18 },
+    });
+    expect(found.map(({ path, code }) => [path, code]).sort()).toEqual([
+      ["bands.meanDb.5", "invalid_type"],
+      ["bands.sdDb.2", "deviation-negative"],
+      ["bands.sdDb.4", "invalid_type"],
+      ["percentile.fewDb", "few-below-most"],
+      ["snrDb", "snr-below-l"],
+    ]);
+  });
+
+  test("a subject with seven values among those with eight, and the other way round", () => {
+    const seven = [null, ...same(20).slice(1)];
+    const bands = { meanDb: same(25), sdDb: same(2) };
+    for (const subjectsDb of [
+      [same(20), seven, same(24)],
+      [seven, same(20), seven],
+    ])
+      expect(issuesOf({ bands, subjectsDb })).toMatchObject([
+        { path: "subjectsDb.1.0", code: "other-63-hz" },
+      ]);
+    expect(issuesOf({ bands, subjectsDb: [seven, seven] })).toEqual([]);
+    expect(issuesOf({ bands, subjectsDb: [same(20), same(24)] })).toEqual([]);
+  });
+
+  test("whatever stands where numbers belong is refused, and nothing is computed from it", () => {
+    for (const value of ["x", 3, [], {}, null])
+      for (const field of ["bands", "active", "usLabel", "subjectsDb", "percentile", "snrDb"])
+        expect(() => issuesOf({ [field]: value })).not.toThrow();
+    expect(ProtectorRevisionInput.safeParse(null).success).toBe(false);
+    // No loop over the periods of a delay that no canceller has.
+    expect(issuesOf({ active: { ...ACTIVE, delayS: 1e12, gain: 0.9 } })).toHaveLength(1);
+  });
+
   test("bands that are missing", () => {
     const found = issuesOf({ bands: { meanDb: same(25).slice(1), sdDb: same(3) } });
     expect(found).toHaveLength(1);

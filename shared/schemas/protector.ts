@@ -2,21 +2,40 @@ import { z } from "zod";
 import { activeAttenuationDb } from "../acoustics/protection/active";
 import type { ActivePart, BandAttenuation, OctaveBandValues } from "../acoustics/types";
 import { Can, IsoDate, Name, Reason } from "./common";
-import { Attenuation, ProtectorFacts, ProtectorKindName } from "./evaluation";
+import { Active, Attenuation, ProtectorFacts, ProtectorKindName } from "./evaluation";
 import { Size } from "./fit";
-
-type Context = { value: z.infer<typeof ProtectorFacts>; issues: unknown[] };
 
 /** No passive protector takes this much more off at 125 Hz than at 4 and 8 kHz: the bands stand backwards, dB. */
 const FALLS_BY_DB = 10;
 const HIGHEST_BAND = 7;
 
+interface Fault {
+  readonly path: (string | number)[];
+  readonly code: string;
+}
+
+interface Checked {
+  readonly issues: { path?: PropertyKey[] | undefined }[];
+  addIssue(issue: { code: "custom"; path: (string | number)[]; params: { code: string } }): void;
+}
+
+/** Also where a field alone is at fault already: all that is wrong is said at once, and a field's own fault before. */
+const TOGETHER = {
+  when: ({ value }: { value: unknown }) => typeof value === "object" && value !== null,
+};
+
+function addFaults(context: Checked, faults: readonly Fault[]): void {
+  for (const { path, code } of faults)
+    if (!context.issues.some((issue) => issue.path?.join() === path.join()))
+      context.addIssue({ code: "custom", path, params: { code } });
+}
+
 /** What a certificate can't say: an SNR below its L, a deviation below zero, an active part that works at 8 kHz. */
-export function plausible(context: Context): void {
-  const { snrDb, lDb, hDb, mDb, bands, active, percentile, usLabel, subjectsDb } = context.value;
-  const add = (path: (string | number)[], code: string) =>
-    context.issues.push({ code: "custom", input: context.value, path, params: { code } });
-  if (snrDb !== null && lDb !== null && snrDb < lDb) add(["snrDb"], "snr-below-l");
+function faultsOfFacts(facts: z.infer<typeof ProtectorFacts>): Fault[] {
+  const { snrDb, lDb, hDb, mDb, bands, active, percentile, usLabel, subjectsDb } = facts;
+  const faults: Fault[] = [];
+  const add = (path: (string | number)[], code: string) => faults.push({ path, code });
+  if (isBelow(snrDb, lDb)) add(["snrDb"], "snr-below-l");
   if (
     [hDb, mDb, lDb].some((value) => value !== null) &&
     [hDb, mDb, lDb].some((value) => value === null)
@@ -25,9 +44,9 @@ export function plausible(context: Context): void {
   if (bands) for (const { path, code } of faultsOfBands(bands)) add(["bands", ...path], code);
   // The level at the ear rests on means and deviations: without them the subjects would count for nothing.
   if (subjectsDb && !bands) add(["subjectsDb"], "subjects-without-bands");
-  for (const band of belowZero(usLabel?.sdDb ?? []))
-    add(["usLabel", "sdDb", band], "deviation-negative");
-  if (percentile && percentile.fewDb < percentile.mostDb)
+  for (const subject of withOther63Hz(subjectsDb)) add(["subjectsDb", subject, 0], "other-63-hz");
+  for (const band of belowZero(usLabel?.sdDb)) add(["usLabel", "sdDb", band], "deviation-negative");
+  if (percentile && isBelow(percentile.fewDb, percentile.mostDb))
     add(["percentile", "fewDb"], "few-below-most");
   if (active && (active.delayS === null) !== (active.gain === null))
     add(["active", "gain"], "delay-and-gain-together");
@@ -38,13 +57,23 @@ export function plausible(context: Context): void {
         : ["active", "attenuationDb", HIGHEST_BAND],
       "active-at-8-khz",
     );
+  return faults;
 }
 
+/*
+ * Fields that are at fault alone are looked at as well, so that anything may stand where a number belongs. Whatever is
+ * no number is neither below nor above another.
+ */
+const isNumber = (value: unknown): value is number => typeof value === "number";
+const isBelow = (value: unknown, other: unknown): boolean =>
+  isNumber(value) && isNumber(other) && value < other;
+
 /** Means and deviations that no test gives, each under its band; under its row where the row as a whole is meant. */
-function faultsOfBands({ meanDb, sdDb }: BandAttenuation) {
-  const faults: { path: (string | number)[]; code: string }[] = [];
+function faultsOfBands({ meanDb, sdDb }: BandAttenuation): Fault[] {
+  const faults: Fault[] = [];
   for (const band of belowZero(sdDb))
     faults.push({ path: ["sdDb", band], code: "deviation-negative" });
+  if (!Array.isArray(meanDb) || !Array.isArray(sdDb)) return faults;
   if ((meanDb[0] === null) !== (sdDb[0] === null))
     faults.push({ path: ["sdDb", 0], code: "band-missing" });
   const negative = takesNothing(meanDb);
@@ -53,8 +82,8 @@ function faultsOfBands({ meanDb, sdDb }: BandAttenuation) {
   return faults;
 }
 
-const belowZero = (valuesDb: readonly (number | null)[]): number[] =>
-  valuesDb.flatMap((db, band) => (db !== null && db < 0 ? [band] : []));
+const belowZero = (valuesDb: unknown): number[] =>
+  Array.isArray(valuesDb) ? valuesDb.flatMap((db, band) => (isBelow(db, 0) ? [band] : [])) : [];
 
 /** A cup may let a little more through in one low band; what is below zero in most was typed with its sign turned. */
 const MOST_BANDS = 4;
@@ -66,10 +95,25 @@ function takesNothing(meanDb: OctaveBandValues): number | null {
 }
 
 const isBackwards = ([, at125, , , , , at4000, at8000]: OctaveBandValues): boolean =>
-  at125 - Math.max(at4000, at8000) > FALLS_BY_DB;
+  [at125, at4000, at8000].every(isNumber) && at125 - Math.max(at4000, at8000) > FALLS_BY_DB;
+
+/**
+ * The subjects who differ from most in having a value at 63 Hz: seven values are read from 125 Hz on, so that of eight
+ * with one left out the others would stand a band too high.
+ */
+function withOther63Hz(subjectsDb: unknown): number[] {
+  const subjects: unknown[] = Array.isArray(subjectsDb) ? subjectsDb : [];
+  const having = (has63Hz: boolean) =>
+    subjects.flatMap((one, index) =>
+      Array.isArray(one) && (one[0] !== null) === has63Hz ? [index] : [],
+    );
+  const [stated, left] = [having(true), having(false)];
+  return left.length > stated.length ? stated : left.length < subjects.length ? left : [];
+}
 
 /** By its report, or by a delay and a gain with no bandwidth that ends before. */
 function claimsHighestBand(active: ActivePart): boolean {
+  if (!Active.safeParse(active).success) return false;
   const claimedDb = active.attenuationDb ?? activeAttenuationDb(active);
   return (claimedDb?.[HIGHEST_BAND] ?? 0) > 0;
 }
@@ -95,7 +139,7 @@ export const RegisterData = ProtectorFacts.extend(ProtectorUse.shape);
 export const ProtectorRevisionInput = RegisterData.extend({
   effectiveFrom: IsoDate,
   reason: Reason.nullable().default(null),
-}).check((context) => plausible(context as unknown as Context));
+}).superRefine((facts, context) => addFaults(context, faultsOfFacts(facts)), TOGETHER);
 export type ProtectorRevisionInput = z.infer<typeof ProtectorRevisionInput>;
 
 export const ProtectorInput = z.object({
@@ -153,13 +197,15 @@ export const CombinationInput = z
     /** Needed for all data of a pair after the first. */
     reason: Reason.nullable().default(null),
   })
-  .check((context) => {
-    const { innerModelId, outerModelId, bands } = context.value;
-    const add = (path: (string | number)[], code: string) =>
-      context.issues.push({ code: "custom", input: context.value, path, params: { code } });
-    if (innerModelId === outerModelId) add(["outerModelId"], "same-protector-twice");
-    for (const { path, code } of faultsOfBands(bands)) add(["bands", ...path], code);
-  });
+  .superRefine(({ innerModelId, outerModelId, bands }, context) => {
+    if (innerModelId === outerModelId)
+      addFaults(context, [{ path: ["outerModelId"], code: "same-protector-twice" }]);
+    if (bands)
+      addFaults(
+        context,
+        faultsOfBands(bands).map(({ path, code }) => ({ path: ["bands", ...path], code })),
+      );
+  }, TOGETHER);
 export type CombinationInput = z.infer<typeof CombinationInput>;
 export const CombinationFilter = z.object({ modelId: z.uuid() });
 export const CombinationView = z.object({

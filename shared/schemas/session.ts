@@ -1,10 +1,17 @@
 import { z } from "zod";
 
-export const RoleName = z.enum(["officer", "supervisor", "worker", "auditor", "administrator"]);
+export const RoleName = z.enum([
+  "officer",
+  "supervisor",
+  "worker",
+  "auditor",
+  "administrator",
+  "representative",
+]);
 export type RoleName = z.infer<typeof RoleName>;
 
-/** Roles, and what is none: somebody who reads one year of a site for a while. */
-export const SessionRole = z.enum([...RoleName.options, "visitor"]);
+/** Roles, and what is none: who reads one year of a site for a while, or as an outside employer its people's results. */
+export const SessionRole = z.enum([...RoleName.options, "visitor", "employer"]);
 export type SessionRole = z.infer<typeof SessionRole>;
 
 export const SiteRef = z.object({

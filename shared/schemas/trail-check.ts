@@ -42,6 +42,7 @@ export const SealFaultKind = z.enum([
   "entry-missing",
   "seal-broken",
   "values-changed",
+  "values-removed",
 ]);
 export type SealFaultKind = z.infer<typeof SealFaultKind>;
 

@@ -45,7 +45,8 @@ export const UserView = z.object({
   grants: z.array(
     z.object({
       id: z.uuid(),
-      role: RoleName,
+      /** `employer`: somebody of an outside employer, for a time. */
+      role: z.enum([...RoleName.options, "employer"]),
       siteId: z.uuid().nullable(),
       siteName: z.string().nullable(),
       /** A visitor's, and when it ends. */

@@ -59,3 +59,13 @@ export function localTime(instant: Date, timeZone: string): string {
 export function addDays(date: string, days: number): string {
   return new Date(Date.parse(`${date}T00:00:00Z`) + days * 86_400_000).toISOString().slice(0, 10);
 }
+
+/** An ISO date some months later; where that month is too short, its last day. */
+export function addMonths(date: string, months: number): string {
+  const [year = 0, month = 1, day = 1] = date.split("-").map(Number);
+  const lastOfMonth = new Date(Date.UTC(year, month - 1 + months + 1, 0));
+  const wanted = Math.min(day, lastOfMonth.getUTCDate());
+  return new Date(Date.UTC(lastOfMonth.getUTCFullYear(), lastOfMonth.getUTCMonth(), wanted))
+    .toISOString()
+    .slice(0, 10);
+}

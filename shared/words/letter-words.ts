@@ -38,6 +38,7 @@ export function letterStateNote(
     });
   if (acknowledged) return i18n.t("by the link, {date}", { date: on(acknowledged.at) });
   if (noticeState === "held") return i18n.t("held");
+  if (noticeState === "bounced") return i18n.t("the mail came back");
   if (noticeState === "possibly-sent") return i18n.t("nobody knows whether it arrived");
   if (state === "sent" && sentAt) return i18n.t("on {date}", { date: on(sentAt) });
   return state === "to-print" ? i18n.t("no mail address") : null;

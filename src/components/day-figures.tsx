@@ -2,6 +2,7 @@ import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { useMemo } from "react";
 import { outsideCriterion } from "../../shared/acoustics/outside-criterion";
+import { bandBelow } from "../../shared/acoustics/protection/adequacy";
 import { levelBasis } from "../../shared/findings/basis";
 import { formatLevel, formatLimit } from "../../shared/format/level";
 import type { Locale } from "../../shared/i18n/index";
@@ -22,7 +23,7 @@ import {
 import { useLocale } from "../lib/i18n";
 import { DropStrip, type DropStripProps, StripGround, StripScale } from "./drop-strip";
 import { LevelFigure } from "./level-figure";
-import { bandBelow, type StripFrame, stripOfDay } from "./strip-of-day";
+import { type StripFrame, stripOfDay } from "./strip-of-day";
 import { Verdict } from "./verdict";
 
 export { gravestOutside, isBoundReason, outsideBases, outsideVerdict, outsideWords };

@@ -1,3 +1,4 @@
+import type { TargetBand } from "../../shared/acoustics/protection/adequacy";
 import type { ProtectorWord, Verdict } from "../../shared/acoustics/types";
 
 /** The scale of every strip, dB. Never fitted to the data: a place on the page always means the same level. */
@@ -21,13 +22,6 @@ export interface StripLimit {
   readonly label: string;
   /** A worker's own target where the rule has no band: drawn as an edge and not as a limit. */
   readonly isTarget?: boolean;
-}
-
-export interface TargetBand {
-  readonly lowDb: number;
-  readonly highDb: number;
-  readonly goodLowDb: number;
-  readonly goodHighDb: number;
 }
 
 /** The numbers of a day (or of a task alone: no limits, no verdict). `null` is "not known". */

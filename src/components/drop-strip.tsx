@@ -1,4 +1,5 @@
 import { useLingui } from "@lingui/react";
+import type { TargetBand } from "../../shared/acoustics/protection/adequacy";
 import { formatLevel, formatLimit } from "../../shared/format/level";
 import { useLocale } from "../lib/i18n";
 import {
@@ -10,16 +11,15 @@ import {
   type StripGeometry,
   type StripLimit,
   stripGeometry,
-  type TargetBand,
 } from "./drop-strip-geometry";
 import { barPath, Halos, Limits, Marks } from "./drop-strip-marks";
 import { type StripWords, stripLabel } from "./strip-label";
 
 /**
  * `row` fills its table cell, band and limit unbroken under a `StripScale`; `list` stands alone with brackets; `card`
- * writes the figures at the ticks; `print` is black only, 60 × 8 mm. The worker’s arrow is `WorkerStrip`.
+ * writes the figures at the ticks. The worker’s arrow is `WorkerStrip`, paper's strip server/reports/strip-picture.ts.
  */
-export type StripVariant = "row" | "list" | "card" | "print";
+export type StripVariant = "row" | "list" | "card";
 
 export interface DropStripProps extends StripWords {
   readonly variant?: StripVariant;
@@ -33,7 +33,6 @@ const K: Readonly<Record<StripVariant, number>> = {
   row: 1.5,
   list: 1.5,
   card: 2.1,
-  print: 1,
 };
 
 export function DropStrip(props: DropStripProps) {
@@ -70,16 +69,16 @@ export function DropStrip(props: DropStripProps) {
     );
   }
 
-  const above = variant === "card" ? 24 : variant === "print" ? 5 : 0;
+  const above = variant === "card" ? 24 : 0;
   const below = variant === "card" ? 20 : 0;
   const height = geometry.height + above + below;
   return (
     // biome-ignore lint/a11y/noSvgWithoutTitle: named by stripLabel, or hidden
     <svg
-      className={`strip${variant === "print" ? " is-print" : ""}`}
+      className="strip"
       viewBox={`0 ${-above} ${widthPx} ${height}`}
-      width={variant === "print" ? "60mm" : widthPx}
-      height={variant === "print" ? undefined : height}
+      width={widthPx}
+      height={height}
       {...named}
     >
       <Band geometry={geometry} />

@@ -1,5 +1,6 @@
+import { bandBelow, type TargetBand } from "../../shared/acoustics/protection/adequacy";
 import type { DayFigures } from "../../shared/schemas/finding";
-import type { StripLimit, TargetBand } from "./drop-strip-geometry";
+import type { StripLimit } from "./drop-strip-geometry";
 import type { StripWords } from "./strip-label";
 
 /** What the strips of one rule set hang from. */
@@ -11,16 +12,6 @@ export interface StripFrame {
   readonly targetLabel: ((levelDb: number) => string) | null;
   /** Whether the rule judges a daily limit at the ear at all. */
   readonly hasLimitAtEar: boolean;
-}
-
-/** EN 458: from 15 dB under the action value up to it; its good part 10 to 5 dB under. */
-export function bandBelow(actionDb: number): TargetBand {
-  return {
-    lowDb: actionDb - 15,
-    goodLowDb: actionDb - 10,
-    goodHighDb: actionDb - 5,
-    highDb: actionDb,
-  };
 }
 
 /** The limits and the target of one worker's strip: a stricter target of the worker's own moves the band, or is a mark of its own. */

@@ -4,6 +4,7 @@ import type { ReactNode } from "react";
 import {
   activateLocale,
   createI18n,
+  directionOf,
   isLocale,
   type Locale,
   localeOf,
@@ -25,9 +26,15 @@ function chosenLocale(): Locale {
   return isLocale(stored) ? stored : pickLocale(navigator.languages);
 }
 
+/** Tells the browser the page's language, and from which side it is written. */
+function speakIn(locale: Locale): void {
+  document.documentElement.lang = locale;
+  document.documentElement.dir = directionOf(locale);
+}
+
 export async function startI18n(): Promise<I18n> {
   const locale = chosenLocale();
-  document.documentElement.lang = locale;
+  speakIn(locale);
   return createI18n(locale, ["base"]);
 }
 
@@ -72,7 +79,7 @@ export async function readAs(
 /** Switches the language at once and keeps it on this device. */
 export async function chooseLocale(i18n: I18n, locale: Locale): Promise<void> {
   await activateLocale(i18n, locale);
-  document.documentElement.lang = locale;
+  speakIn(locale);
   // biome-ignore lint/suspicious/noDocumentCookie: the Cookie Store API is not in every browser that we serve
   document.cookie = `${LOCALE_COOKIE}=${locale}; path=/; max-age=${A_YEAR_S}; samesite=lax`;
 }

@@ -13,5 +13,7 @@ export function roleWord(i18n: I18n, role: RoleName): string {
       return i18n.t("Auditor");
     case "administrator":
       return i18n.t("Administrator");
+    case "representative":
+      return i18n.t("Workers’ representative");
   }
 }

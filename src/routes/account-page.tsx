@@ -5,6 +5,8 @@ import { accessQueries } from "../features/access/queries";
 import { ReadersTable } from "../features/access/readers-table";
 import { ReadsTable } from "../features/access/reads-table";
 import { DigestForm } from "../features/crew-sheet/digest-form";
+import { MailChoices } from "../features/mails/mail-choices";
+import { SentToMe } from "../features/mails/sent-to-me";
 import { hasRole, useUser } from "../features/session/session";
 import { TokenForm } from "../features/tokens/token-form";
 import { TokensTable } from "../features/tokens/tokens-table";
@@ -47,6 +49,16 @@ export function Component() {
             of="account"
           />
         </Section>
+        {hasRole(user, "officer", "supervisor", "worker") && (
+          <>
+            <Section title={i18n.t("Sent to me")} id="sent">
+              <SentToMe timeZone={user.sites[0]?.timeZone ?? "UTC"} />
+            </Section>
+            <Section title={i18n.t("Mails that come to me")} id="mails">
+              <MailChoices />
+            </Section>
+          </>
+        )}
         {hasRole(user, "officer", "supervisor") && (
           <Section title={i18n.t("Daily mail")} id="digest">
             <p className="account-note">

@@ -8,12 +8,12 @@ import { formatLevel, formatLimit } from "../../shared/format/level";
 import { ruleSetVersion } from "../../shared/rule-sets";
 import type { ProtectorChoiceView } from "../../shared/schemas/choice";
 import type { Candidate } from "../../shared/schemas/fit";
-import { ButtonLink } from "../components/button";
 import { Empty } from "../components/empty";
 import { Failed } from "../components/failed";
 import { FilterRow, FilterSelect } from "../components/filter-row";
 import { TextLink } from "../components/link";
 import { Folio, PageBody, PageHead, Section } from "../components/page";
+import { SlipsLink } from "../components/slips-link";
 import { Status } from "../components/status";
 import { GiveForm } from "../features/choosing/give-form";
 import { choiceQueries } from "../features/choosing/queries";
@@ -94,11 +94,16 @@ export function Component() {
         )}
       </PageBody>
       <Folio>
-        {governing &&
+        {governing && [
           i18n.t(
-            "{title}, rule set version {version}. In this order: what may be worn with it, its word while worn, the margin at the ear, own fit, battery, stock. Active parts count as off.",
+            "{title}, rule set version {version}. In this order: what may be worn with it, its word while worn, the margin at the ear, own fit, battery, stock.",
             { title: i18n._(governing.title), version: governing.version },
-          )}
+          ),
+          " ",
+          data?.creditsActivePart
+            ? i18n.t("An active part counts where its check is passed on all who would wear it.")
+            : i18n.t("Active parts count as off."),
+        ]}
       </Folio>
     </>
   );
@@ -202,9 +207,7 @@ function Compared({ choice }: { choice: ProtectorChoiceView }) {
       </p>
       {given && (
         <p className="after-table">
-          <ButtonLink kind="primary" to={paths.slips(given.workerIds)}>
-            {i18n.t("Print the slips")}
-          </ButtonLink>
+          <SlipsLink workerIds={given.workerIds} />
         </p>
       )}
       {picked && mayGive && (

@@ -547,6 +547,10 @@ function toldWord(i18n: ReturnType<typeof useLingui>["i18n"], state: string): st
       return i18n.t("possibly sent");
     case "failed":
       return i18n.t("not sent");
+    case "bounced":
+      return i18n.t("came back undeliverable");
+    case "on-paper":
+      return i18n.t("was told on paper or in person");
     default:
       return i18n.t("withdrawn");
   }

@@ -7,11 +7,12 @@ import { formatLevel, formatLimit } from "../../shared/format/level";
 import { ruleSetVersion } from "../../shared/rule-sets";
 import type { FitTestView, FittingDesk } from "../../shared/schemas/fit";
 import { localDate } from "../../shared/time/zone";
-import { Button, ButtonLink } from "../components/button";
+import { Button } from "../components/button";
 import { Empty } from "../components/empty";
 import { Failed } from "../components/failed";
 import { TextButton, TextLink } from "../components/link";
 import { Folio, PageBody, PageHead, Section } from "../components/page";
+import { SlipsLink } from "../components/slips-link";
 import { Status } from "../components/status";
 import { CandidatesTable } from "../features/fits/candidates-table";
 import { FitForm, type FitFormHandle } from "../features/fits/fit-form";
@@ -300,7 +301,7 @@ function AtDesk({
         />
         {desk.issued.length > 0 && (
           <p className="after-table">
-            <ButtonLink to={paths.slips([worker.id])}>{i18n.t("Print the slip")}</ButtonLink>
+            <SlipsLink workerIds={[worker.id]} />
           </p>
         )}
       </Section>

@@ -8,5 +8,7 @@ export function homeOf(user: Pick<SessionUser, "roles">): string {
   if (hasRole(user, "supervisor")) return paths.crewSheet;
   if (hasRole(user, "auditor", "visitor")) return paths.yearFile;
   if (hasRole(user, "administrator")) return paths.people;
+  if (hasRole(user, "representative")) return paths.siteFigures;
+  if (hasRole(user, "employer")) return paths.sharedResults;
   return paths.me;
 }

@@ -23,6 +23,11 @@ import "../styles/me.css";
 const loadHistory = () => import("../features/me/my-history");
 const MyHistory = lazy(() => loadHistory().then(({ MyHistory }) => ({ default: MyHistory })));
 
+/** After the page itself: it is worked out anew each time. */
+const TaskTimes = lazy(() =>
+  import("../features/me/task-times").then(({ TaskTimes }) => ({ default: TaskTimes })),
+);
+
 /** A longer title is set smaller: a phone holds about three lines of the large one. */
 const LONG_TITLE = 64;
 
@@ -118,6 +123,11 @@ function OwnPage({ workerId }: { workerId: string }) {
         <Section title={i18n.t("My last shift")} id="my-last-shift">
           {part(<LastShift day={lastDay} workerId={workerId} askedFor={askedFor} today={today} />)}
         </Section>
+        {protectors && (
+          <Suspense fallback={null}>
+            <TaskTimes workerId={workerId} />
+          </Suspense>
+        )}
         <Section title={i18n.t("My year at the ear")} id="my-year">
           <Suspense fallback={<PartLoading />}>
             {part(
@@ -133,6 +143,11 @@ function OwnPage({ workerId }: { workerId: string }) {
               {i18n.t("My whole record to print (PDF)")}
             </a>
           </p>
+          <p>
+            <a className="link me-list-link" href="/api/me/record.zip" download>
+              {i18n.t("My whole record as a file (ZIP)")}
+            </a>
+          </p>
         </Section>
         <Section title={i18n.t("My training")} id="my-training">
           <WorkerTrainings workerId={workerId} today={today} />
@@ -144,6 +159,11 @@ function OwnPage({ workerId }: { workerId: string }) {
               "A help for you, not a medical opinion. Seen by you, your supervisor and your safety officer.",
             )}{" "}
             <TextLink to={paths.account}>{i18n.t("Who else can see it, and who has")}</TextLink>
+          </p>
+          <p>
+            <TextLink className="me-list-link" to={`${paths.account}#sent`}>
+              {i18n.t("Letters and mails sent to me")}
+            </TextLink>
           </p>
         </div>
       </div>

@@ -12,7 +12,6 @@ export const measuringRoutes: PageRoute[] = [
   { path: paths.newSurvey, lazy: () => import("./survey-form-page"), roles: ["officer"] },
   { path: paths.survey(":id"), lazy: () => import("./survey-page") },
   { path: paths.changeSurvey(":id"), lazy: () => import("./survey-form-page"), roles: ["officer"] },
-  { path: paths.fieldSheet(":id"), lazy: () => import("./field-sheet-page") },
   { path: paths.group(":jobId"), lazy: () => import("./group-page") },
   { path: paths.outAndBack, lazy: () => import("./out-and-back-page") },
   { path: paths.sample, lazy: () => import("./sample-page"), roles: ["officer"] },

@@ -15,6 +15,11 @@ export const officerRoutes: PageRoute[] = [
   { path: paths.finding(":id"), lazy: () => import("./finding-page") },
   { path: paths.letters, lazy: () => import("./letters-page"), roles: READERS },
   { path: paths.letter(":id"), lazy: () => import("./letter-page"), roles: READERS },
+  {
+    path: paths.employers,
+    lazy: () => import("./employers-page"),
+    roles: ["officer", "auditor"],
+  },
   { path: paths.workers, lazy: () => import("./workers-page"), roles: READERS },
   { path: paths.newWorker, lazy: () => import("./worker-form-page"), roles: ["officer"] },
   { path: paths.changeWorker(":id"), lazy: () => import("./worker-form-page"), roles: ["officer"] },

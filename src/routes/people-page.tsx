@@ -23,6 +23,8 @@ export function Component() {
           actions={
             <>
               <ButtonLink to={paths.groups}>{i18n.t("Roles by group")}</ButtonLink>
+              <ButtonLink to={paths.retention}>{i18n.t("Keeping and erasing")}</ButtonLink>
+              <ButtonLink to={paths.employerShares}>{i18n.t("Employers")}</ButtonLink>
               <ButtonLink to={paths.visitors}>{i18n.t("Visitors")}</ButtonLink>
               <ButtonLink kind="primary" to={paths.person("new")}>
                 {i18n.t("New person")}

@@ -23,6 +23,11 @@ export const peopleRoutes: PageRoute[] = [
     roles: ["supervisor", "officer", "auditor"],
   },
   {
+    path: paths.siteFigures,
+    lazy: () => import("./site-figures-page"),
+    roles: ["representative"],
+  },
+  {
     path: paths.yearFile,
     lazy: () => import("./year-file-page"),
     roles: ["auditor", "officer", "visitor"],
@@ -50,11 +55,40 @@ export const peopleRoutes: PageRoute[] = [
   {
     path: paths.account,
     lazy: () => import("./account-page"),
-    roles: ["officer", "supervisor", "worker", "auditor", "administrator", "visitor"],
+    roles: [
+      "officer",
+      "supervisor",
+      "worker",
+      "auditor",
+      "administrator",
+      "representative",
+      "visitor",
+      "employer",
+    ],
   },
   { path: paths.trailCheck, lazy: () => import("./trail-check-page"), roles: ["auditor"] },
+  {
+    path: paths.trailHead,
+    lazy: () => import("./trail-head-page"),
+    roles: ["auditor", "administrator"],
+  },
   { path: paths.people, lazy: () => import("./people-page"), roles: ["administrator"] },
   { path: paths.groups, lazy: () => import("./groups-page"), roles: ["administrator"] },
+  {
+    path: paths.employerShares,
+    lazy: () => import("./employer-shares-page"),
+    roles: ["officer", "administrator"],
+  },
+  {
+    path: paths.sharedResults,
+    lazy: () => import("./shared-results-page"),
+    roles: ["employer"],
+  },
+  {
+    path: paths.retention,
+    lazy: () => import("./retention-page"),
+    roles: ["administrator", "officer"],
+  },
   { path: paths.visitors, lazy: () => import("./visitors-page"), roles: ["administrator"] },
   { path: paths.person(":id"), lazy: () => import("./person-page"), roles: ["administrator"] },
   { path: paths.sites, lazy: () => import("./sites-page"), roles: ["administrator"] },

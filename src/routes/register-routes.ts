@@ -2,16 +2,11 @@ import { paths } from "../paths";
 import type { PageRoute } from "./page-route";
 
 export const registerRoutes: PageRoute[] = [
-  {
-    path: paths.protectors,
-    lazy: () => import("./protectors-page"),
-    roles: ["officer", "auditor"],
-  },
+  { path: paths.protectors, lazy: () => import("./protectors-page") },
   { path: paths.newProtector, lazy: () => import("./protector-form-page"), roles: ["officer"] },
   { path: paths.fitting, lazy: () => import("./fitting-page"), roles: ["officer"] },
   { path: paths.fittingOf(":workerId"), lazy: () => import("./fitting-page"), roles: ["officer"] },
   { path: paths.choose, lazy: () => import("./choose-page"), roles: ["officer", "auditor"] },
-  { path: "/protectors/slips", lazy: () => import("./slips-page"), roles: ["officer", "auditor"] },
   { path: paths.fits, lazy: () => import("./fits-page"), roles: ["officer", "auditor"] },
   {
     path: paths.signals,

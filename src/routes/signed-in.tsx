@@ -35,6 +35,8 @@ function useNavigation(user: SessionUser): NavItem[] {
     hasRole(user, "administrator") && { to: paths.people, label: i18n.t("People") },
     hasRole(user, "administrator") && { to: paths.sites, label: i18n.t("Sites") },
     hasRole(user, "administrator") && !reader && { to: paths.trail, label: i18n.t("Trail") },
+    hasRole(user, "representative") && { to: paths.siteFigures, label: i18n.t("The site") },
+    hasRole(user, "employer") && { to: paths.sharedResults, label: i18n.t("Results shared") },
     hasRole(user, "worker") && user.roles.length > 1 && { to: paths.me, label: i18n.t("My page") },
   ];
   return items.filter((item) => item !== false);
@@ -47,6 +49,8 @@ function roleWord(i18n: I18n, roles: readonly SessionRole[]): string {
   if (roles.includes("auditor")) return i18n.t("auditor");
   if (roles.includes("administrator")) return i18n.t("administrator");
   if (roles.includes("visitor")) return i18n.t("visitor");
+  if (roles.includes("representative")) return i18n.t("workers’ representative");
+  if (roles.includes("employer")) return i18n.t("reader for an employer");
   return i18n.t("worker");
 }
 

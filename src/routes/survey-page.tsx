@@ -75,7 +75,9 @@ export function Component() {
               {can.change && isOpen && (
                 <ButtonLink to={paths.changeSurvey(id)}>{i18n.t("Change the plan")}</ButtonLink>
               )}
-              <ButtonLink to={paths.fieldSheet(id)}>{i18n.t("Field sheet")}</ButtonLink>
+              <a className="link" href={apiAddress(`/surveys/${id}/field-sheet.pdf`)} download>
+                {i18n.t("Field sheet (PDF)")}
+              </a>
               <a className="link" href={apiAddress(`/surveys/${id}/report.pdf`)} download>
                 {i18n.t("Survey report (PDF)")}
               </a>

@@ -152,7 +152,10 @@ export function Component() {
           actions={
             <>
               {hasRole(user, "auditor", "administrator") && (
-                <ButtonLink to={paths.reads}>{i18n.t("Who read whose record")}</ButtonLink>
+                <>
+                  <ButtonLink to={paths.reads}>{i18n.t("Who read whose record")}</ButtonLink>
+                  <ButtonLink to={paths.trailHead}>{i18n.t("The head outside")}</ButtonLink>
+                </>
               )}
               {hasRole(user, "auditor") && (
                 <ButtonLink to={paths.trailCheck}>{i18n.t("Check the trail")}</ButtonLink>

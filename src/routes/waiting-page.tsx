@@ -313,13 +313,7 @@ function WaitingMargin({
           timeZone={zoneOfNotice(entry.notices.flatMap(({ workers }) => workers))}
         />
       ))}
-      {data.troubled.length > 0 && (
-        <TroubledNotices
-          notices={data.troubled}
-          timeZoneOf={({ workers }) => zoneOfNotice(workers)}
-          onSent={tellSent}
-        />
-      )}
+      {data.troubled.length > 0 && <TroubledNotices notices={data.troubled} onSent={tellSent} />}
       {toBeChecked.length > 0 && (
         <MarginNote title={i18n.t("Done, to be checked")}>
           {toBeChecked.slice(0, CHECKS_SHOWN).map(({ finding, also }) => (

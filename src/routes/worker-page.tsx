@@ -29,6 +29,7 @@ import { HistoryChart } from "../components/history-chart";
 import { TextButton, TextLink } from "../components/link";
 import { Folio, MarginNote, PageBody, PageHead, Section } from "../components/page";
 import { ProtectorWord } from "../components/protector-word";
+import { SlipsLink } from "../components/slips-link";
 import { groundOf } from "../components/strip-of-day";
 import { AssignForm, assignedUse } from "../features/assignments/assign-form";
 import { AssignmentsTable } from "../features/assignments/assignments-table";
@@ -41,6 +42,7 @@ import { Refusals } from "../features/fits/refusals";
 import { OfficeLink } from "../features/session/office-link";
 import { hasRole, useUser } from "../features/session/session";
 import { WorkerTrainings } from "../features/training/worker-training";
+import { EmployerNote } from "../features/workers/employer-note";
 import { workerQueries } from "../features/workers/queries";
 import { SignInSlip } from "../features/workers/sign-in-slip";
 import { employerWords } from "../features/workers/workers-table";
@@ -94,6 +96,9 @@ function WorkerSheet({ worker }: { worker: WorkerView }) {
                 </TextLink>
               </p>
             </MarginNote>
+            {worker.employer !== "own" && hasRole(user, "officer", "auditor") && (
+              <EmployerNote worker={worker} />
+            )}
             {/* A visitor's grant shows no crews: that there are none would not be true. */}
             {(worker.crews.length > 0 || !hasRole(user, "visitor")) && (
               <MarginNote title={i18n.t("Crews")}>
@@ -311,9 +316,7 @@ function Protectors({ worker, today }: { worker: WorkerView; today: string }) {
           (asked === null ? (
             <p className="after-table">
               <Button onClick={() => open()}>{i18n.t("Assign a protector")}</Button>{" "}
-              {worker.assignments.length > 0 && (
-                <ButtonLink to={paths.slips([worker.id])}>{i18n.t("Print the slip")}</ButtonLink>
-              )}
+              {worker.assignments.length > 0 && <SlipsLink workerIds={[worker.id]} />}
             </p>
           ) : (
             <div className="inset-form">

@@ -64,9 +64,13 @@ export function Component() {
                     {i18n.t("New worker")}
                   </ButtonLink>
                   <ButtonLink to={paths.roster}>{i18n.t("Roster from a file")}</ButtonLink>
+                  <ButtonLink to={paths.retention}>{i18n.t("Keeping and erasing")}</ButtonLink>
                 </>
               )}
               {isOffice && <ButtonLink to={paths.trainings}>{i18n.t("Training")}</ButtonLink>}
+              {isOffice && (
+                <ButtonLink to={paths.employers}>{i18n.t("Agencies and contractors")}</ButtonLink>
+              )}
             </>
           }
         />

@@ -18,6 +18,7 @@ import {
   buildDay,
   buildFitTest,
   buildJob,
+  buildProtector,
   buildRun,
   buildShift,
   buildSite,
@@ -60,7 +61,10 @@ async function takePdf(client: Client, path: string): Promise<Buffer> {
 }
 
 /** What another program reads in a PDF. */
-function readBack(pdf: Buffer, program: "pdftotext" | "pdfinfo" = "pdftotext"): string {
+function readBack(
+  pdf: Buffer,
+  program: "pdftotext" | "pdfinfo" | "pdffonts" = "pdftotext",
+): string {
   const folder = mkdtempSync(join(tmpdir(), "dinward-pdf-"));
   try {
     const file = join(folder, "report.pdf");
@@ -153,6 +157,29 @@ describeEndpoint({
   call: async (site) => ({
     method: "get",
     path: `/surveys/${(await buildSurvey({ site, targets: [{ taskId: null }] })).id}/report.pdf`,
+  }),
+});
+describeEndpoint({
+  route: "GET /surveys/:id/field-sheet.pdf",
+  as: "auditor",
+  not: "supervisor",
+  event: null,
+  bad: null,
+  call: async (site) => ({
+    method: "get",
+    path: `/surveys/${(await buildSurvey({ site, targets: [{ taskId: null }] })).id}/field-sheet.pdf`,
+  }),
+});
+describeEndpoint({
+  route: "GET /issue-slips.pdf",
+  as: "auditor",
+  not: "supervisor",
+  event: null,
+  bad: { path: "&language=xx" },
+  badField: "language",
+  call: async (site) => ({
+    method: "get",
+    path: `/issue-slips.pdf?workerIds=${(await buildWorker({ site })).id}`,
   }),
 });
 describeEndpoint({
@@ -256,10 +283,21 @@ describe("a worker's exposure record", () => {
 
   test("signs and letters that the typeface lacks are still read out as they are", async () => {
     const site = await buildSite();
-    const worker = await buildWorker({ site, name: "Łucja Ωmega" });
+    const worker = await buildWorker({ site, name: "Łucja 林" });
     await buildDay(worker, "2026-05-04", { outsideDb: 84.1 });
     const text = readBack(await takePdf(await clientAt(site, "officer"), recordOf(worker)));
-    expect(text).toContain("Łucja Ωmega");
+    expect(text).toContain("Łucja 林");
+  });
+
+  test.each([
+    ["Ευτέρπη Ξανθάκη", "NotoSans-greek"],
+    ["Єлизавета Щеглюк", "NotoSans-cyrillic"],
+  ])("%s is written in a typeface that has its letters", async (name, font) => {
+    const site = await buildSite();
+    const worker = await buildWorker({ site, name });
+    const pdf = await takePdf(await clientAt(site, "officer"), recordOf(worker));
+    expect(readBack(pdf)).toContain(name);
+    expect(readBack(pdf, "pdffonts")).toMatch(new RegExp(`\\+${font}\\b.* yes `));
   });
 });
 
@@ -288,6 +326,79 @@ describe("a survey's report", () => {
     expect(text).toContain("Not on record");
     expect(text).toContain("– who measured");
     expect(text).toContain("clause 15 of ISO 9612:2009 from memory");
+  });
+});
+
+describe("a survey's field sheet", () => {
+  test("has a sheet for each task, with a row for each sample to write in", async () => {
+    const site = await buildSite();
+    const tasks = [
+      await buildTask({ site, name: "Fettling" }),
+      await buildTask({ site, name: "Quenching" }),
+    ];
+    const job = await buildJob({
+      site,
+      tasks: tasks.map(({ id }) => ({ taskId: id, durationMin: 240 })),
+    });
+    const survey = await buildSurvey({
+      site,
+      jobId: job.id,
+      targets: tasks.map(({ id }) => ({ taskId: id })),
+    });
+    const officer = await clientAt(site, "officer");
+    const { body } = await officer.get(`/surveys/${survey.id}`);
+    const pdf = await takePdf(officer, `/surveys/${survey.id}/field-sheet.pdf`);
+    const sheets = plain(readBack(pdf)).split("\f").filter(Boolean);
+    expect(sheets).toHaveLength(2);
+    for (const [index, sheet] of sheets.entries()) {
+      expect(sheet).toContain(body.taskNames[tasks[index]!.id]);
+      expect(sheet).toContain(`Field sheet ${index + 1} of 2: ${body.name}`);
+      expect(sheet).toContain(survey.id);
+      expect(sheet).toContain("Page 1 of 1");
+      const rows = sheet.match(/^ *\d+ \d+( h| min).*$/gm);
+      expect(rows).toHaveLength(body.targets[index].samplesCount);
+    }
+    expect(readBack(pdf, "pdfinfo")).toMatch(/Tagged: +yes/);
+  });
+});
+
+describe("issue slips", () => {
+  test("are a sheet for each worker in the worker's language, with the levels that the API gives", async () => {
+    const site = await buildSite({ timeZone: "UTC" });
+    const { organizationId } = site;
+    const loud = await buildTask({
+      site,
+      name: "Loud",
+      levelDb: 98.4,
+      octaveBandsDb: [20, 20, 20, 20, 98.4, 20, 20, 20],
+    });
+    const job = await buildJob({ site, tasks: [{ taskId: loud.id, durationMin: 60 }] });
+    const [one, other] = [
+      await buildWorker({ site, jobId: job.id, name: "Ødger Holm", language: "de" }),
+      await buildWorker({ site, name: "Ines Alba", language: "es" }),
+    ];
+    const inner = await buildProtector({ organizationId, name: "Muff", data: { snrDb: 20 } });
+    await buildAssignment({ worker: one, inner });
+    const officer = await clientAt(site, "officer");
+    const ids = `workerIds=${one.id},${other.id}`;
+    const { body } = await officer.get(`/issue-slips?${ids}`);
+    const [device] = body.rows[0].protectors;
+    const slips = plain(readBack(await takePdf(officer, `/issue-slips.pdf?${ids}`)))
+      .split("\f")
+      .filter(Boolean);
+    expect(slips).toHaveLength(2);
+    expect(slips[0]).toContain("Ødger Holm");
+    expect(slips[0]).toContain("Muff");
+    expect(slips[0]).toContain("Ihre Gehörschützer");
+    expect(slips[0]).toContain(formatLevel(device.outsideDb, "de"));
+    expect(slips[0]).toContain(formatLevel(device.wornDb, "de"));
+    expect(slips[1]).toContain("Ines Alba");
+    expect(slips[1]).not.toContain("Ødger Holm");
+    const english = readBack(await takePdf(officer, `/issue-slips.pdf?${ids}&language=en`));
+    expect(english.match(/Your hearing protectors/g)).toHaveLength(2);
+    const foreign = await buildWorker();
+    const refused = await officer.get(`/issue-slips.pdf?workerIds=${one.id},${foreign.id}`);
+    expect(refused.status).toBe(404);
   });
 });
 

@@ -48,7 +48,7 @@ async function install(name: string): Promise<Installation> {
     database: "dinward",
     ports: noPorts,
     publicUrl: "http://127.0.0.1:1",
-    secrets: { client: "unused", session: "unused-".repeat(8) },
+    secrets: { client: "unused", session: "unused-".repeat(8), hook: "unused-".repeat(8) },
     dataDir,
   });
   return {

@@ -48,7 +48,7 @@ beforeAll(async () => {
     database: DATABASE,
     ports: { ...noPorts, web: port },
     publicUrl: url,
-    secrets: { client: "unused", session: "unused-".repeat(8) },
+    secrets: { client: "unused", session: "unused-".repeat(8), hook: "unused-".repeat(8) },
     dataDir,
   });
   // The factories work on this database too.

@@ -189,6 +189,22 @@ describe("a label beside its own test data", () => {
     expect(found.filter(({ isAtOdds }) => isAtOdds)).toHaveLength(1);
   });
 
+  test("from a deviation below zero nothing is recomputed, and it is said why", () => {
+    const sdDb = [5, 5, -5, 5, 5, 5, 5, 5] as unknown as OctaveBandValues;
+    const usLabel = { meanDb: Array(9).fill(30), sdDb: [3, 3, 3, 3, 3, 3, 3, 3, -3] };
+    const found = compareRatings(
+      buildProtector({ ...label, bands: { ...bands, sdDb }, usRatingDb: 20, usLabel }),
+    );
+    expect(found.filter(({ reason }) => reason === "deviation-invalid")).toHaveLength(5);
+    for (const one of found)
+      expect(one).toMatchObject({ recomputedDb: null, by: null, isAtOdds: false });
+    // Single subjects have their own.
+    const bySubjects = compareRatings(
+      buildProtector({ ...label, bands: { ...bands, sdDb }, subjectsDb: [same(20), same(30)] }),
+    );
+    expect(bySubjects.every(({ reason }) => reason === null)).toBe(true);
+  });
+
   test("no data, nothing to compare", () => {
     for (const one of compareRatings(buildProtector({ snrDb: 27 })))
       expect(one).toMatchObject({ recomputedDb: null, differenceDb: null, by: null });

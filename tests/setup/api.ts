@@ -22,6 +22,9 @@ Object.assign(process.env, {
   OIDC_ALLOW_INSECURE: "true",
   SMTP_URL: `smtp://127.0.0.1:${ports.smtp}`,
   MAIL_FROM: "Dinward <noise@dinward.example>",
+  MAIL_RETURN_TO: "returned@dinward.example",
+  // The second of two: secrets are changed one after the other.
+  MAIL_HOOK_SECRETS: `${"newer-secret-".repeat(3)},${secrets.hook}`,
   SESSION_SECRETS: secrets.session,
   PUBLIC_URL: publicUrl,
   DATA_DIR: mkdtempSync(join(folder, "files-")),

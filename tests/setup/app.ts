@@ -114,7 +114,7 @@ export async function startApp({
   const ports = await choosePorts();
   const url = `http://127.0.0.1:${ports.web}`;
   const secret = () => randomBytes(32).toString("base64url");
-  const secrets = { client: secret(), session: secret() };
+  const secrets = { client: secret(), session: secret(), hook: secret() };
   const database = seed === "demo" ? await copyDemo(label, dataDir) : await copyDatabase(label);
   addPeople(peopleFolder, people);
   const env: NodeJS.ProcessEnv = {
@@ -125,6 +125,8 @@ export async function startApp({
     OIDC_CLIENT_SECRET: secrets.client,
     SMTP_URL: `smtp://127.0.0.1:${ports.smtp}`,
     SESSION_SECRETS: secrets.session,
+    MAIL_HOOK_SECRETS: secrets.hook,
+    MAIL_RETURN_TO: "returned@dinward.example",
     PUBLIC_URL: url,
   };
   const demoPeople = join(dataDir, "demo-people.json");

@@ -36,7 +36,7 @@ export default async function setUp(project: TestProject) {
       database: template,
       ports: noPorts,
       publicUrl: "http://127.0.0.1:1",
-      secrets: { client: "unused", session: "unused-".repeat(8) },
+      secrets: { client: "unused", session: "unused-".repeat(8), hook: "unused-".repeat(8) },
       dataDir: "/nowhere",
     });
     await promisify(execFile)(process.execPath, ["--import", "tsx", "server/migrate.ts"], { env });

@@ -26,12 +26,12 @@ export default async function setUp(project: TestProject) {
   const ports = await choosePorts();
   const publicUrl = `http://127.0.0.1:${ports.web}`;
   const secret = () => randomBytes(32).toString("base64url");
-  const secrets = { client: secret(), session: secret() };
+  const secrets = { client: secret(), session: secret(), hook: secret() };
   const peopleFolder = join(folder, "people");
   mkdirSync(peopleFolder);
   const [provider, catcher] = await Promise.all([
     startProvider({ ports, publicUrl, secrets, people: peopleFolder, serviceDir: folder }),
-    startMailCatcher({ ports, serviceDir: folder }),
+    startMailCatcher({ ports, secrets, serviceDir: folder }),
   ]);
   const mailsUrl = catcher.mailbox.url;
   project.provide("services", { ports, publicUrl, secrets, peopleFolder, mailsUrl, folder });

@@ -70,7 +70,11 @@ export async function startProvider(options: {
   return { ...provider, issuer };
 }
 
-export async function startMailCatcher(options: { ports: Ports; serviceDir: string }) {
+export async function startMailCatcher(options: {
+  ports: Ports;
+  secrets: Pick<Secrets, "hook">;
+  serviceDir: string;
+}) {
   const catcher = startProcess("mail", [catcherScript], catcherEnvironment(options));
   const mailbox = new Mailbox(`http://127.0.0.1:${options.ports.mails}`);
   await waitFor(`${mailbox.url}/messages`, catcher);
@@ -89,6 +93,14 @@ export class Mailbox {
 
   async clear(): Promise<void> {
     await fetch(`${this.url}/messages`, { method: "DELETE" });
+  }
+
+  /** What it reported of mails that came back, with the heads that sign it. */
+  async reports(): Promise<{ headers: Record<string, string>; body: string }[]> {
+    return (await (await fetch(`${this.url}/reports`)).json()) as {
+      headers: Record<string, string>;
+      body: string;
+    }[];
   }
 
   async behave(mode: MailBehaviour): Promise<void> {

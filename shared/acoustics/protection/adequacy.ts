@@ -15,6 +15,28 @@ export function en458Word(wornDb: number, actionValueDb: number): ProtectorWord 
   return isPast(wornDb, actionValueDb - 15, "reaches") ? "strong-side" : "too-much";
 }
 
+/** Levels at the ear while worn that a protector should bring about, dB. */
+export interface TargetBand {
+  readonly lowDb: number;
+  readonly highDb: number;
+  readonly goodLowDb: number;
+  readonly goodHighDb: number;
+}
+
+/**
+ * From 15 dB under the action value up to it; its good part 10 to 5 dB under.
+ *
+ * @source en-458 Annex A
+ */
+export function bandBelow(actionDb: number): TargetBand {
+  return {
+    lowDb: actionDb - 15,
+    goodLowDb: actionDb - 10,
+    goodHighDb: actionDb - 5,
+    highDb: actionDb,
+  };
+}
+
 /**
  * Whether a protector brings the shift's level at the ear down to its target.
  *

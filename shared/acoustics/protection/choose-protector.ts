@@ -159,7 +159,7 @@ interface Noise {
   readonly levelDb: number;
   readonly durationMin: number;
   readonly isBare: boolean;
-  /** A-weighted powers by band, NaN where not known; null without a spectrum. */
+  /** A-weighted powers by band, NaN where not known; null without a spectrum, and where no method of the rule reads it. */
   readonly powers: Float64Array | null;
   readonly lcLaDb: number | null;
   readonly statedLcLaDb: number | null;
@@ -170,10 +170,10 @@ interface Noise {
  * some sums.
  *
  * The order is lexicographic: what gear, missing data or the archive exclude comes last; then the word while worn
- * (active part off, which a battery can't take away, unless it is credited on this wearer, as in a day's verdict); where the rule's word is of the whole shift, what is too little in
- * a task by EN 458 after what is not, and so what is too much; then the lower-confidence margin under the target, not rounded
- * (where all are too much: the least of it); own fit; whether the battery lasts; stock; name. Each says which comparison
- * put it behind the one before.
+ * (active part off, which a battery can't take away, unless it is credited on this wearer, as in a day's verdict); where
+ * the rule's word is of the whole shift, what is too little in a task by EN 458 after what is not, and so what is too
+ * much; then the lower-confidence margin under the target, not rounded (where all are too much: the least of it); own
+ * fit; whether the battery lasts; stock; name. Each says which comparison put it behind the one before.
  *
  * Like is compared with like: the lower-confidence level is that of mean − 1.64 deviations, and an own fit is restated
  * for the same share. A single number has its share protected in it and says nothing of another; where one of those in
@@ -185,6 +185,7 @@ interface Noise {
 export class ProtectorChoice {
   /** By name, which is the last comparison. */
   private readonly prepared: readonly Prepared[];
+  private readonly readsBands: boolean;
 
   constructor(
     offers: readonly Offer[],
@@ -194,6 +195,7 @@ export class ProtectorChoice {
     /** From where EN 458's words hang beside a rule that has no scale of its own, dB; null: they aren't asked for. */
     private readonly besideScaleDb: number | null = null,
   ) {
+    this.readsBands = rule.methods.includes("octave-band");
     this.prepared = offers
       .map((offer) => prepare(offer, rule))
       .sort((a, b) => (a.offer.name < b.offer.name ? -1 : a.offer.name > b.offer.name ? 1 : 0));
@@ -201,7 +203,7 @@ export class ProtectorChoice {
 
   for(wearer: Wearer): RankedProtector[] {
     const { prepared } = this;
-    const noises = wearer.noises.map(toNoise);
+    const noises = wearer.noises.map((noise) => toNoise(noise, this.readsBands));
     const targetDb = targetOf(this.rule, wearer.personalTargetDb);
     const scaleDb =
       this.besideScaleDb &&
@@ -298,9 +300,11 @@ export class ProtectorChoice {
             scaleIn = noise.name;
           }
         }
-        wornSum += noise.durationMin * weightOf(wornDb, law);
-        likeSum += noise.durationMin * weightOf(likeDb, law);
-        lowSum += noise.durationMin * weightOf(lowDb, law);
+        // A weight is a power of two: what is the same, or won't be read, is not computed again.
+        const sum = noise.durationMin * weightOf(wornDb, law);
+        wornSum += sum;
+        likeSum += likeDb === wornDb ? sum : noise.durationMin * weightOf(likeDb, law);
+        if (hasLower) lowSum += noise.durationMin * weightOf(lowDb, law);
         continue;
       }
       const gainDb = isCredited
@@ -601,12 +605,12 @@ function factorsOf(attenuationDb: OctaveBandValues): Float64Array {
   );
 }
 
-function toNoise({ name, level, durationMin, isBare = false }: Wearer["noises"][number]): Noise {
+function toNoise(
+  { name, level, durationMin, isBare = false }: Wearer["noises"][number],
+  readsBands: boolean,
+): Noise {
   const { octaveBandsDb, levelDb, lcMinusLaDb: statedLcLaDb } = level;
-  const powers = octaveBandsDb && new Float64Array(octaveBandsDb.length);
-  if (powers)
-    for (const [band, bandDb] of octaveBandsDb.entries())
-      powers[band] = bandDb === null ? Number.NaN : 10 ** ((bandDb + A_WEIGHTING_DB[band]!) / 10);
+  const powers = readsBands ? octaveBandsDb && aWeightedPowers(octaveBandsDb) : null;
   return {
     name,
     level,
@@ -617,6 +621,13 @@ function toNoise({ name, level, durationMin, isBare = false }: Wearer["noises"][
     lcLaDb: lcMinusLaDb(level),
     statedLcLaDb,
   };
+}
+
+function aWeightedPowers(octaveBandsDb: OctaveBandValues): Float64Array {
+  const powers = new Float64Array(octaveBandsDb.length);
+  for (const [band, bandDb] of octaveBandsDb.entries())
+    powers[band] = bandDb === null ? Number.NaN : 10 ** ((bandDb + A_WEIGHTING_DB[band]!) / 10);
+  return powers;
 }
 
 interface Reductions {

@@ -146,6 +146,8 @@ export interface RatingComparison {
   readonly differenceDb: number | null;
   /** How it was recomputed. */
   readonly by: "pooled" | "per-subject" | "us-label" | null;
+  /** Why it isn't, though there are test data; null: it is, or there are none. */
+  readonly reason: "deviation-invalid" | null;
   /** Further apart than rounding to whole numbers explains. */
   readonly isAtOdds: boolean;
 }
@@ -163,22 +165,34 @@ const ROUNDING_DB = 1;
 export function compareRatings(data: ProtectorData): RatingComparison[] {
   const { bands, usLabel, subjectsDb } = data;
   const by = subjectsDb ? "per-subject" : bands ? "pooled" : null;
-  const european = subjectsDb ? perSubjectRatings(subjectsDb) : bands ? pooledRatings(bands) : null;
+  const isInvalid = !subjectsDb && bands !== null && !hasDeviations(bands);
+  const european = subjectsDb
+    ? perSubjectRatings(subjectsDb)
+    : bands && !isInvalid
+      ? pooledRatings(bands)
+      : null;
+  const isUsInvalid = usLabel ? !hasDeviations(usLabel) : false;
+  const usDb = usLabel && !isUsInvalid ? usRatingOfLabelDb(usLabel) : undefined;
   return [
-    compared("h", data.hDb, european?.hDb, by),
-    compared("m", data.mDb, european?.mDb, by),
-    compared("l", data.lDb, european?.lDb, by),
-    compared("snr", data.snrDb, european?.snrDb, by),
-    compared("us", data.usRatingDb, usLabel ? usRatingOfLabelDb(usLabel) : undefined, "us-label"),
-    compared("slc80", data.slc80Db, undefined, null),
+    compared("h", data.hDb, european?.hDb, by, isInvalid),
+    compared("m", data.mDb, european?.mDb, by, isInvalid),
+    compared("l", data.lDb, european?.lDb, by, isInvalid),
+    compared("snr", data.snrDb, european?.snrDb, by, isInvalid),
+    compared("us", data.usRatingDb, usDb, "us-label", isUsInvalid),
+    compared("slc80", data.slc80Db, undefined, null, false),
   ];
 }
+
+/** A deviation is the root of a square: below zero it is a typing error, and would add to what the protector takes off. */
+const hasDeviations = ({ sdDb }: { readonly sdDb: readonly (number | null)[] }): boolean =>
+  sdDb.every((db) => db === null || db >= 0);
 
 function compared(
   rating: RatingName,
   labelDb: number | null,
   recomputed: number | undefined,
   by: RatingComparison["by"],
+  isInvalid: boolean,
 ): RatingComparison {
   const recomputedDb = recomputed ?? null;
   const differenceDb = labelDb === null || recomputedDb === null ? null : labelDb - recomputedDb;
@@ -188,6 +202,7 @@ function compared(
     recomputedDb,
     differenceDb,
     by: recomputedDb === null ? null : by,
+    reason: isInvalid ? "deviation-invalid" : null,
     isAtOdds: differenceDb !== null && Math.abs(differenceDb) > ROUNDING_DB,
   };
 }

@@ -1,9 +1,12 @@
 import type { I18n } from "@lingui/core";
+import { isolate } from "../../../shared/i18n/isolate";
 import type { ReaderView, ReadKind } from "../../../shared/schemas/access";
 import { roleWord } from "../../lib/role-word";
 
 /** "Supervisor of Day crew", "Visitor". */
-export function readerWord(i18n: I18n, { role, crewName }: ReaderView): string {
+export function readerWord(i18n: I18n, { role, crewName, employerName }: ReaderView): string {
+  if (role === "employer")
+    return i18n.t("Of the employer {name}", { name: isolate(employerName ?? "") });
   if (role === "visitor") return i18n.t("Visitor");
   return crewName === null
     ? roleWord(i18n, role)
@@ -26,8 +29,14 @@ export function seesWord(i18n: I18n, { role, year, siteName }: ReaderView): stri
         year: String(year),
         site: siteName ?? "",
       });
+    case "employer":
+      return i18n.t("Levels and verdicts of days worked for that employer at {site}.", {
+        site: siteName ?? "",
+      });
     case "worker":
       return i18n.t("The own record.");
+    case "representative":
+      return i18n.t("Counts of the site without names. No record.");
   }
 }
 

@@ -47,8 +47,8 @@ export function ReadersTable({
       caption={caption}
       columns={columns}
       rows={readers ?? []}
-      rowKey={({ userId, role, siteName, crewName, year }) =>
-        [userId, role, siteName, crewName, year].join(" ")
+      rowKey={({ userId, role, siteName, crewName, employerName, year }) =>
+        [userId, role, siteName, crewName, employerName, year].join(" ")
       }
       state={error ? "failed" : readers === undefined ? "loading" : "ready"}
       error={error}

@@ -6,6 +6,7 @@ import {
   type ActiveChartBand,
   activeChart,
 } from "../../../shared/acoustics/protection/active-chart";
+import { bandBelow } from "../../../shared/acoustics/protection/adequacy";
 import type { ActivePart, RuleSetVersion, TaskLevel } from "../../../shared/acoustics/types";
 import { asReason, reasonText } from "../../../shared/findings/reasons";
 import { formatLevel, formatLevelChange, formatLimit } from "../../../shared/format/level";
@@ -17,7 +18,6 @@ import { DataTable } from "../../components/data-table";
 import { DropStrip } from "../../components/drop-strip";
 import { Empty } from "../../components/empty";
 import { protectorWordText } from "../../components/protector-word";
-import { bandBelow } from "../../components/strip-of-day";
 import { useLocale } from "../../lib/i18n";
 import { useIsPhone } from "../../lib/use-is-phone";
 import { BandLevels } from "./band-levels";

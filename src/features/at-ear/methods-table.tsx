@@ -1,10 +1,10 @@
 import { useLingui } from "@lingui/react";
+import { bandBelow } from "../../../shared/acoustics/protection/adequacy";
 import { formatLevel, formatLimit } from "../../../shared/format/level";
 import { actionValueDb, ruleSetVersion } from "../../../shared/rule-sets";
 import type { AtEarView, MethodRow } from "../../../shared/schemas/at-ear";
 import { type DataColumn, DataTable } from "../../components/data-table";
 import { DropStrip, StripGround, StripScale } from "../../components/drop-strip";
-import { bandBelow } from "../../components/strip-of-day";
 import { useLocale } from "../../lib/i18n";
 import { useIsPhone } from "../../lib/use-is-phone";
 import { methodInItsWay, startWord, whyNot } from "./method-words";

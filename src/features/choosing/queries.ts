@@ -1,5 +1,5 @@
 import { queryOptions, useMutation, useQueryClient } from "@tanstack/react-query";
-import { IssueSlips, ProtectorChoiceView } from "../../../shared/schemas/choice";
+import { ProtectorChoiceView } from "../../../shared/schemas/choice";
 import { ManyAssigned, type ManyAssignmentsInput } from "../../../shared/schemas/worker";
 import { api } from "../../lib/api";
 
@@ -10,14 +10,6 @@ export const choiceQueries = {
       queryFn: ({ signal }) =>
         api.get("/protector-choice", { query, schema: ProtectorChoiceView, signal }),
       enabled: query.taskId !== undefined || query.jobId !== undefined,
-    }),
-  slips: (workerIds: string) =>
-    queryOptions({
-      queryKey: ["workers", "slips", workerIds],
-      queryFn: ({ signal }) =>
-        api.get("/issue-slips", { query: { workerIds }, schema: IssueSlips, signal }),
-      select: ({ rows }) => rows,
-      enabled: workerIds !== "",
     }),
 };
 

@@ -153,12 +153,15 @@ export function judgedByWord(
       : i18n.t("judged with the active part on: its check is passed on all of them");
   if (twaDb !== null) return i18n.t("judged with the active part off: the rule’s word is of that");
   if (!siteCredits) return i18n.t("judged with the active part off: no credit at this site");
-  return group === null
-    ? i18n.t("judged with the active part off: no passed check on record")
-    : i18n.t("judged with the active part off: its check is passed on {checked} of {all}", {
-        checked: group.checked,
-        all: group.all,
-      });
+  if (group === null || group.checked === 0)
+    return i18n.t("judged with the active part off: no passed check on record");
+  // Of so many only the first are looked at.
+  if (group.checked === group.all)
+    return i18n.t("judged with the active part off: not all who would wear it are known");
+  return i18n.t("judged with the active part off: its check is passed on {checked} of {all}", {
+    checked: group.checked,
+    all: group.all,
+  });
 }
 
 /** The level that a candidate's word is about: the shift's where the rule judges that, else while worn in a task. */

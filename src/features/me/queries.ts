@@ -2,6 +2,7 @@ import { queryOptions } from "@tanstack/react-query";
 import type { z } from "zod";
 import type { FindingPage } from "../../../shared/schemas/finding";
 import type { FitTestView, IssueView } from "../../../shared/schemas/fit";
+import type { TaskTimes } from "../../../shared/schemas/own-record";
 import type { OwnReports } from "../../../shared/schemas/wearing";
 import type { HistoryPage, WorkerView } from "../../../shared/schemas/worker";
 import { api } from "../../lib/api";
@@ -39,6 +40,14 @@ export const ownQueries = {
           schema: ownReply<{ rows: OwnFinding[] }>("rows"),
           signal,
         }),
+      select: ({ rows }) => rows,
+    }),
+  /** How long tasks of the day may last, where that is certain. */
+  taskTimes: (workerId: string) =>
+    queryOptions({
+      queryKey: ["me", workerId, "task-times"],
+      queryFn: ({ signal }) =>
+        api.get(`/workers/${workerId}/task-times`, { schema: ownReply<TaskTimes>("rows"), signal }),
       select: ({ rows }) => rows,
     }),
   /** What was said of the own wearing from a day on. */

@@ -1,6 +1,6 @@
 import { queryOptions, useMutation, useQueryClient } from "@tanstack/react-query";
 import type { z } from "zod";
-import type { EntryNotices, NoticeText } from "../../../shared/schemas/notice";
+import type { EntryNotices, NoticeAction, NoticeText } from "../../../shared/schemas/notice";
 import { api } from "../../lib/api";
 import { ownReply } from "../../lib/own-reply";
 
@@ -17,11 +17,11 @@ export const noticeTextQuery = (id: string) =>
 /** Holds back, or lets go at once, what an entry will tell. */
 export function useHandleNotices(
   entryId: string,
-  onHandled: (action: "hold" | "send-now") => void = () => undefined,
+  onHandled: (action: NoticeAction) => void = () => undefined,
 ) {
   const client = useQueryClient();
   return useMutation({
-    mutationFn: (action: "hold" | "send-now") =>
+    mutationFn: (action: NoticeAction) =>
       api.post(`/entries/${entryId}/notices/actions`, { body: { action }, schema: entryReply }),
     onSuccess: (_entry, action) => onHandled(action),
     onSettled: () =>

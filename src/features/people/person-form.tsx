@@ -21,7 +21,7 @@ const toChange = ({ name, language, workerId, grants }: UserView): Change => ({
   workerId,
   grants: grants
     .filter(({ endsAt, groupName }) => endsAt === null && groupName === null)
-    .map(({ role, siteId }) => ({ role, siteId })),
+    .flatMap(({ role, siteId }) => (role === "employer" ? [] : [{ role, siteId }])),
 });
 
 interface FormProps {

@@ -9,6 +9,7 @@ export const ROLES: readonly RoleName[] = [
   "worker",
   "auditor",
   "administrator",
+  "representative",
 ];
 
 /** "Safety officer, Ostmere works". */
@@ -22,6 +23,8 @@ export function grantWords(
   }: Pick<UserView["grants"][number], "role" | "siteName"> &
     Partial<Pick<UserView["grants"][number], "year" | "groupName">>,
 ): string {
+  if (role === "employer")
+    return i18n.t("Results for an employer, {site}", { site: siteName ?? "" });
   if (year) return i18n.t("Visitor, {site}, {year}", { site: siteName ?? "", year: String(year) });
   if (groupName)
     return i18n.t("{grant}, by group {group}", {

@@ -90,6 +90,20 @@ test("label and bands are held against each other while they are typed", async (
   expect(within(beside).getByText("+3.5")).toBeTruthy();
 });
 
+test("nothing is recomputed from a deviation below zero, and the reason stands in its place", async () => {
+  const sdDb = same(2);
+  sdDb[3] = -2;
+  show({ data: { bands: { meanDb: same(30), sdDb }, snrDb: 31 } });
+  const beside = () => screen.getByRole("region", { name: "The label beside its test data" });
+  const snr = within(beside()).getByRole("row", { name: /^SNR/ });
+  expect(snr.textContent).toContain("not recomputed: a standard deviation is below zero");
+  expect(within(snr).getByText("31.0")).toBeTruthy();
+  expect(within(beside()).queryByText("means and deviations (1994)")).toBeNull();
+  await userEvent.clear(screen.getAllByLabelText("Standard deviation, 500 Hz")[0]!);
+  await userEvent.type(screen.getAllByLabelText("Standard deviation, 500 Hz")[0]!, "2");
+  expect(within(beside()).getAllByText("means and deviations (1994)")).toHaveLength(4);
+}, 15_000);
+
 test("nine third-octaves go in by one paste, and give the US number", async () => {
   const onSave = show({ data: { usRatingDb: 20 } });
   for (const row of ["Mean attenuation", "Standard deviation"]) {
@@ -103,15 +117,40 @@ test("nine third-octaves go in by one paste, and give the US number", async () =
   );
 });
 
-test("a subject's missing band is named with the subject", async () => {
+test("a subject's missing bands are named with its line, in one sentence", async () => {
   const onSave = show();
-  const lines = [same(24).join("\t"), same(26).slice(0, 6).join("\t")].join("\n");
+  const head = [63, 125, 250, 500, 1000, 2000, 4000, 8000].join("\t");
+  const lines = [head, same(24).join("\t"), same(26).slice(0, 6).join("\t")].join("\n");
   await userEvent.click(cell(/^One subject a line/));
   await userEvent.paste(lines);
   await save();
-  expect(screen.getByText(/^Subject 2, 4000 Hz: /)).toBeTruthy();
+  expect(screen.getByText("Line 3: 4000, 8000 Hz missing.")).toBeTruthy();
   expect(onSave).not.toHaveBeenCalled();
 });
+
+test("seven values among lines of eight are not taken a band too high without a word", async () => {
+  const onSave = show({ data: { bands: { meanDb: same(30), sdDb: same(3) } } });
+  await userEvent.click(cell(/^One subject a line/));
+  await userEvent.paste([same(24), same(26, 7), same(28)].map((one) => one.join("\t")).join("\n"));
+  await save();
+  expect(screen.getByText(/^Line 2: It has other bands than the rest: eight values/)).toBeTruthy();
+  expect(onSave).not.toHaveBeenCalled();
+}, 15_000);
+
+test("all that is wrong with bands and label is said at once", async () => {
+  const [meanDb, sdDb]: (number | null)[][] = [same(30), same(3)];
+  meanDb![4] = null;
+  sdDb![3] = -2;
+  const onSave = show({ data: { bands: { meanDb, sdDb }, hDb: 31, mDb: 25, lDb: 18, snrDb: 12 } });
+  await save();
+  expect(
+    screen.getByText(
+      /^Mean attenuation: 1000 Hz missing\. 500 Hz: A standard deviation can’t be negative/,
+    ),
+  ).toBeTruthy();
+  expect(screen.getByText(/^SNR: The SNR lies below the L/)).toBeTruthy();
+  expect(onSave).not.toHaveBeenCalled();
+}, 15_000);
 
 test("means and deviations can be taken from the subjects", async () => {
   const onSave = show();
@@ -134,9 +173,10 @@ test("what was typed for a band stays until the subjects’ means are asked for;
   await userEvent.paste([same(24).join("\t"), same(28).join("\t"), "26\tx"].join("\n"));
   expect(screen.getByText(/^2 subjects\. 1 line is not whole and does not count\.$/)).toBeTruthy();
   await save();
-  // All of its faults together: 125 Hz can't be read, and 250 Hz to 8 kHz are missing.
-  const fault = screen.getByText(/^Subject 3, 125 Hz: .*Subject 3, 250 Hz: .*Subject 3, 500 Hz: /);
-  expect(fault).toBeTruthy();
+  // All of its faults together.
+  const fault =
+    "Line 3, 125 Hz, “x”: This is not a number. Line 3: 250, 500, 1000, 2000, 4000, 8000 Hz missing.";
+  expect(screen.getByText(fault)).toBeTruthy();
   await userEvent.clear(subjects);
   await userEvent.click(subjects);
   await userEvent.paste([24, 28].map((value) => same(value).join("\t")).join("\n"));

@@ -8,7 +8,7 @@ import { DateField, Field, NumberField, TextAreaField } from "../../components/f
 import { Disclosure } from "./disclosure";
 import { mayBeActive } from "./kinds";
 import { LabelFields } from "./label-fields";
-import { labelRatings } from "./label-ratings";
+import { hasTestData, labelRatings } from "./label-ratings";
 import { RatingsTable } from "./ratings-table";
 import { SubjectsField } from "./subjects-field";
 import { typedFacts } from "./typed-facts";
@@ -35,7 +35,7 @@ const NO_ACTIVE = {
 function LiveRatings({ form }: { form: ProtectorForm }) {
   const { i18n } = useLingui();
   const ratings = labelRatings(typedFacts(form.watch("data")));
-  if (ratings.every(({ recomputedDb }) => recomputedDb === null)) return null;
+  if (!ratings.some(hasTestData)) return null;
   return (
     <section className="live-ratings" aria-label={i18n.t("The label beside its test data")}>
       <RatingsTable ratings={ratings} auClass={form.watch("data.auClass") ?? null} />

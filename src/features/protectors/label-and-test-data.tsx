@@ -7,7 +7,7 @@ import { bandLabel } from "../../components/band-picture";
 import { DataTable } from "../../components/data-table";
 import { Empty } from "../../components/empty";
 import { useLocale } from "../../lib/i18n";
-import { labelRatings } from "./label-ratings";
+import { hasTestData, labelRatings } from "./label-ratings";
 import { RatingsTable } from "./ratings-table";
 import { typedFacts } from "./typed-facts";
 
@@ -19,7 +19,7 @@ export function LabelAndTestData({ data }: { data: Data }) {
   const ratings = labelRatings(typedFacts(data));
   return (
     <>
-      {ratings.some(({ recomputedDb }) => recomputedDb !== null) ? (
+      {ratings.some(hasTestData) ? (
         <RatingsTable ratings={ratings} auClass={data.auClass} />
       ) : (
         <Empty title={i18n.t("The label can’t be recomputed.")}>

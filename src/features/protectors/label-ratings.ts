@@ -27,7 +27,7 @@ const NOTHING = { modelId: "", revisionId: null, name: "", kind: "earmuff", acti
 
 /**
  * The label beside what its test data give, dB: by means and deviations, and where there are single subjects by these
- * as well. Only what a label states or the data can give.
+ * as well. Only what a label states or the data can give, or could if they were right.
  */
 export function labelRatings(facts: RatingFacts): RatingComparison[] {
   const pooled = compareRatings({ ...NOTHING, ...facts, subjectsDb: null });
@@ -37,7 +37,12 @@ export function labelRatings(facts: RatingFacts): RatingComparison[] {
   return pooled
     .flatMap((one) => {
       const beside = bySubjects.filter(({ rating }) => rating === one.rating);
-      return one.recomputedDb === null && beside.length > 0 ? beside : [one, ...beside];
+      const isReplaced = one.recomputedDb === null && one.reason === null && beside.length > 0;
+      return isReplaced ? beside : [one, ...beside];
     })
-    .filter(({ labelDb, recomputedDb }) => labelDb !== null || recomputedDb !== null);
+    .filter((one) => one.labelDb !== null || hasTestData(one));
 }
+
+/** Test data give the rating, or it is said why they don't. */
+export const hasTestData = ({ recomputedDb, reason }: RatingComparison): boolean =>
+  recomputedDb !== null || reason !== null;

@@ -10,7 +10,9 @@ import { Status } from "../../components/status";
 import { useLocale } from "../../lib/i18n";
 import { ratingWord } from "./label-ratings";
 
-function byWord(i18n: I18n, { by, rating }: RatingComparison): string {
+function byWord(i18n: I18n, { by, rating, reason }: RatingComparison): string {
+  if (reason === "deviation-invalid")
+    return i18n.t("not recomputed: a standard deviation is below zero");
   switch (by) {
     case "pooled":
       return i18n.t("means and deviations (1994)");

@@ -1,6 +1,6 @@
 import { describe, expect, test } from "vitest";
 import { Unreadable } from "../../components/form";
-import { readSubjects } from "./read-subjects";
+import { linesOfSubjects, readSubjects } from "./read-subjects";
 
 const eight = [12, 14, 19, 25, 28, 31, 34, 33];
 const seven = eight.slice(1);
@@ -11,6 +11,14 @@ describe("subjects out of a spreadsheet", () => {
     const head = tabs(["63 Hz", "125 Hz", "250 Hz", "500 Hz", "1k", "2k", "4k", "8k"]);
     expect(readSubjects(`${tabs(eight)}\n${tabs(eight)}`, "en")).toEqual([eight, eight]);
     expect(readSubjects(`Subject\t${head}\nA\t${tabs(eight)}\n\n`, "en")).toEqual([eight]);
+  });
+
+  test("each is known by its line, heads and empty lines counted", () => {
+    const head = "63 125 250 500 1000 2000 4000 8000";
+    expect(linesOfSubjects(`${head}\n\n${eight.join(" ")}\r\n${eight.join(" ")}\n`)).toEqual([
+      3, 4,
+    ]);
+    expect(linesOfSubjects("")).toEqual([]);
   });
 
   test("seven begin at 125 Hz", () => {

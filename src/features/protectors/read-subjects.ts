@@ -25,6 +25,14 @@ export function readSubjects(text: string, locale: Locale): Typed[][] {
   });
 }
 
+/** On which line of the text each subject stands, from 1. */
+export function linesOfSubjects(text: string): number[] {
+  const filled = text
+    .split(/\r\n|\r|\n/)
+    .flatMap((line, at) => (line.trim() === "" ? [] : [at + 1]));
+  return cellsOf(text).flatMap((cells, at) => (isHead(cells) ? [] : [filled[at]!]));
+}
+
 const isHead = (cells: readonly string[]): boolean =>
   cells.filter(isFrequency).length >= COUNT - 1 && cells.some(namesHighest);
 

@@ -1,3 +1,4 @@
+import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { useState } from "react";
 import { get } from "react-hook-form";
@@ -10,7 +11,7 @@ import type { Typed } from "../../components/number-input";
 import { Status } from "../../components/status";
 import { useLocale } from "../../lib/i18n";
 import type { ProtectorForm } from "./data-fields";
-import { readSubjects } from "./read-subjects";
+import { linesOfSubjects, readSubjects } from "./read-subjects";
 import { typedFacts } from "./typed-facts";
 
 type Subjects = readonly (readonly Typed[])[];
@@ -49,6 +50,7 @@ export function SubjectsField({ form }: { form: ProtectorForm }) {
   const isTaken = taken !== null && taken === JSON.stringify(bands);
   const isWritten = typed !== null && JSON.stringify(typed.value) === JSON.stringify(stored);
   const errors: unknown = get(form.formState.errors, "data.subjectsDb");
+  const lines = linesOfSubjects(isWritten ? typed.text : written);
   const whole = typedFacts({ subjectsDb: stored }).subjectsDb ?? null;
   const wholeCount = (stored ?? []).filter(isWhole).length;
 
@@ -76,9 +78,7 @@ export function SubjectsField({ form }: { form: ProtectorForm }) {
       note={i18n.t(
         "Pasted from a spreadsheet: eight bands from 63 Hz, or seven from 125 Hz; a head of frequencies and a first column of subjects are left out.",
       )}
-      error={faultOf(errors, (subject, hz, message) =>
-        i18n.t("Subject {number}, {hz} Hz: {message}", { number: subject + 1, hz, message }),
-      )}
+      error={faultOf(i18n, errors, stored ?? [], (subject) => lines[subject] ?? subject + 1)}
     >
       {(wires) => (
         <div className="subjects-field">
@@ -130,24 +130,66 @@ const isWhole = (subject: readonly Typed[]): boolean =>
 /** More faults than these are no longer read, dozens come of one wrong paste. */
 const MOST_FAULTS = 6;
 
-/** The faults together, each with whose it is. */
+/** The faults together, each with the line on which it stands. */
 function faultOf(
+  i18n: I18n,
   errors: unknown,
-  say: (subject: number, hz: number, message: string) => string,
+  stored: Subjects,
+  lineOf: (subject: number) => number,
 ): string | undefined {
-  const own = (errors as { message?: unknown } | undefined)?.message;
-  if (typeof own === "string") return own;
-  const found: string[] = [];
+  const own = messageOf(errors);
+  if (own !== null) return own;
   // The form's errors are members by index, of those that have one.
-  for (const [index, bands] of Object.entries((errors ?? {}) as Record<string, unknown>)) {
-    const subject = Number(index);
-    const ofSubject = (bands as { message?: unknown } | undefined)?.message;
-    if (typeof ofSubject === "string") found.push(say(subject, OCTAVE_BANDS_HZ[0], ofSubject));
-    for (const [band, hz] of OCTAVE_BANDS_HZ.entries()) {
-      const message: unknown = get(bands, `${band}.message`);
-      if (typeof message === "string") found.push(say(subject, hz, message));
-    }
-  }
+  const found = Object.entries((errors ?? {}) as Record<string, unknown>).flatMap(
+    ([index, ofLine]) => faultsOfLine(i18n, ofLine, stored[Number(index)] ?? [], lineOf(+index)),
+  );
   if (found.length === 0) return undefined;
   return [...found.slice(0, MOST_FAULTS), ...(found.length > MOST_FAULTS ? ["…"] : [])].join(" ");
+}
+
+function faultsOfLine(
+  i18n: I18n,
+  errors: unknown,
+  values: readonly Typed[],
+  line: number,
+): string[] {
+  const ofLine = messageOf(errors);
+  if (ofLine !== null) return [i18n.t("Line {line}: {message}", { line, message: ofLine })];
+  const missingHz: number[] = [];
+  const found: string[] = [];
+  for (const [band, hz] of OCTAVE_BANDS_HZ.entries()) {
+    const fault: unknown = get(errors, `${band}`);
+    const message = messageOf(fault);
+    const value = values[band];
+    if (message === null) continue;
+    if (get(fault, "type") === OTHER_BANDS)
+      found.push(i18n.t("Line {line}: {message}", { line, message }));
+    else if (value === null) missingHz.push(hz);
+    else if (value instanceof Unreadable)
+      found.push(
+        i18n.t("Line {line}, {hz} Hz, “{typed}”: {message}", {
+          line,
+          hz,
+          typed: value.text,
+          message,
+        }),
+      );
+    else found.push(i18n.t("Line {line}, {hz} Hz: {message}", { line, hz, message }));
+  }
+  if (missingHz.length > 0)
+    found.push(
+      i18n.t("{row}: {bands} Hz missing.", {
+        row: i18n.t("Line {line}", { line }),
+        bands: missingHz.join(", "),
+      }),
+    );
+  return found;
+}
+
+/** The fault of a line as a whole, which the schema puts at its first band. */
+const OTHER_BANDS = "other-63-hz";
+
+function messageOf(error: unknown): string | null {
+  const message: unknown = get(error, "message");
+  return typeof message === "string" ? message : null;
 }

@@ -4,10 +4,11 @@ import { formatShortDate } from "../../../shared/format/date";
 import { formatLevel } from "../../../shared/format/level";
 import { withoutStop } from "../../../shared/format/words";
 import type { TaskLevelView } from "../../../shared/schemas/task";
-import { TextLink } from "../../components/link";
+
 import { useLocale } from "../../lib/i18n";
 import { strategyWord } from "../../lib/register-words";
 import { paths } from "../../paths";
+import { MeasuredLink } from "./measured-link";
 
 type Level = z.infer<typeof TaskLevelView>;
 
@@ -16,7 +17,7 @@ export function SurveyOfLevel({ level }: { level: Level }) {
   const { i18n } = useLingui();
   return (
     <span>
-      <TextLink to={paths.survey(level.surveyId ?? "")}>{level.surveyName}</TextLink>,{" "}
+      <MeasuredLink to={paths.survey(level.surveyId ?? "")}>{level.surveyName}</MeasuredLink>,{" "}
       {strategyWord(i18n, level.strategy)}
     </span>
   );
@@ -35,9 +36,9 @@ export function LevelSource({ level }: { level: Level }) {
         {level.samples.map(({ runId, date, levelDb, fromS }) => (
           <li key={`${runId} ${fromS ?? ""}`}>
             <span className="mono">{formatLevel(levelDb, locale)}</span>{" "}
-            <TextLink to={paths.run(runId)}>
+            <MeasuredLink to={paths.run(runId)}>
               {i18n.t("run of {date}", { date: formatShortDate(date, locale) })}
-            </TextLink>
+            </MeasuredLink>
           </li>
         ))}
       </ul>

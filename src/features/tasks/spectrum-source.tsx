@@ -1,8 +1,9 @@
 import { useLingui } from "@lingui/react";
 import type { z } from "zod";
 import type { TaskLevelView } from "../../../shared/schemas/task";
-import { TextLink } from "../../components/link";
+
 import { paths } from "../../paths";
+import { MeasuredLink } from "./measured-link";
 
 /** Where a spectrum in force comes from: a recording, a survey, or whoever typed it. */
 export function SpectrumSource({ level }: { level: z.infer<typeof TaskLevelView> }) {
@@ -20,14 +21,14 @@ export function SpectrumSource({ level }: { level: z.infer<typeof TaskLevelView>
     return (
       <p>
         {i18n.t("From the recording")}{" "}
-        <TextLink to={paths.recording(recordingId)}>{level.recordingName}</TextLink>
+        <MeasuredLink to={paths.recording(recordingId)}>{level.recordingName}</MeasuredLink>
       </p>
     );
   if (surveyId !== null)
     return (
       <p>
         {i18n.t("From the survey")}{" "}
-        <TextLink to={paths.survey(surveyId)}>{level.surveyName}</TextLink>
+        <MeasuredLink to={paths.survey(surveyId)}>{level.surveyName}</MeasuredLink>
       </p>
     );
   return (

@@ -1,5 +1,6 @@
 import type { I18n } from "@lingui/core";
 import type { RowFaultKind, SealFaultKind } from "../../../shared/schemas/trail-check";
+import type { HeadMail } from "../../../shared/schemas/trail-keeper";
 
 export function sealFaultWord(i18n: I18n, kind: SealFaultKind, count: number): string {
   switch (kind) {
@@ -13,6 +14,8 @@ export function sealFaultWord(i18n: I18n, kind: SealFaultKind, count: number): s
       return i18n.t("What was recorded of rows was removed");
     case "seal-broken":
       return i18n.t("The seal does not follow: what it covers was changed, or the seal itself");
+    case "values-removed":
+      return i18n.t("The event’s values were removed, and no erasure did that");
     case "values-changed":
       return i18n.t("The event’s values are not what was written");
   }
@@ -37,5 +40,16 @@ export function operationWord(i18n: I18n, operation: "insert" | "update" | "dele
       return i18n.t("Changed");
     case "delete":
       return i18n.t("Removed");
+  }
+}
+
+export function headMailWord(i18n: I18n, state: HeadMail["state"]): string {
+  switch (state) {
+    case "waiting":
+      return i18n.t("on its way");
+    case "sent":
+      return i18n.t("sent");
+    case "refused":
+      return i18n.t("refused by the mail server");
   }
 }

@@ -177,6 +177,13 @@ const WORDS: Readonly<Record<string, (i18n: I18n) => string>> = {
   acceptedDoubts: (i18n) => i18n.t("Kept although"),
   fileIds: (i18n) => i18n.t("Files"),
   sizeBytes: (i18n) => i18n.t("Size"),
+  // Agencies and contractors
+  measuresFor: (i18n) => i18n.t("Measures the noise"),
+  protectsFor: (i18n) => i18n.t("Provides protectors"),
+  trainsFor: (i18n) => i18n.t("Trains"),
+  keepsFor: (i18n) => i18n.t("Keeps the records"),
+  tellsFor: (i18n) => i18n.t("Tells the results"),
+  agreedIn: (i18n) => i18n.t("Agreed in"),
   // Surveys and changes
   purpose: (i18n) => i18n.t("Purpose"),
   strategy: (i18n) => i18n.t("Strategy"),

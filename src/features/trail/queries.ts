@@ -2,6 +2,7 @@ import { infiniteQueryOptions, queryOptions } from "@tanstack/react-query";
 import type { z } from "zod";
 import type { AuditEventPage } from "../../../shared/schemas/audit-event";
 import type { TrailState } from "../../../shared/schemas/trail-check";
+import { KeeperView } from "../../../shared/schemas/trail-keeper";
 import { api } from "../../lib/api";
 import { ownReply } from "../../lib/own-reply";
 
@@ -31,3 +32,9 @@ export const trailStateQuery = () =>
       api.get("/trail-check", { schema: ownReply<TrailState>("tail", "tables"), signal }),
     staleTime: 0,
   });
+
+/** Who outside keeps the head. */
+export const keeperQuery = queryOptions({
+  queryKey: ["trail", "keeper"],
+  queryFn: ({ signal }) => api.get("/trail-keeper", { schema: KeeperView, signal }),
+});

@@ -33,6 +33,9 @@ export const SUBJECT_KINDS = [
   "group-mapping",
   "draw",
   "hand-over",
+  "organization",
+  "legal-hold",
+  "erasure",
 ] as const;
 export type SubjectKind = (typeof SUBJECT_KINDS)[number];
 
@@ -49,6 +52,12 @@ export function subjectWord(i18n: I18n, kind: string): string {
       return i18n.t("Role by group");
     case "hand-over":
       return i18n.t("Hand-over");
+    case "organization":
+      return i18n.t("Organization");
+    case "legal-hold":
+      return i18n.t("Hold on records");
+    case "erasure":
+      return i18n.t("Erasure");
     case "draw":
       return i18n.t("Drawn records");
     case "worker":
@@ -324,12 +333,44 @@ export function actionWord(i18n: I18n, action: string): string {
       return i18n.t("Year taken as a workbook");
     case "issue-year-report":
       return i18n.t("Report of the year issued");
+    case "choose-mails":
+      return i18n.t("Mails chosen that are done without");
+    case "take-own-record":
+      return i18n.t("Own record taken as a file");
     case "choose-digest":
       return i18n.t("Hour of the daily mail chosen");
     case "give-hand-over":
       return i18n.t("Handed over to the next in charge");
     case "receive-hand-over":
       return i18n.t("Hand-over read");
+    case "agree-employer-duties":
+      return i18n.t("Duties agreed with an employer");
+    case "share-with-employer":
+      return i18n.t("Results shared with an employer");
+    case "end-employer-share":
+      return i18n.t("Sharing with an employer ended");
+    case "export-shared-results":
+      return i18n.t("Results taken as a file by an employer");
+    case "set-retention-term":
+      return i18n.t("Own term for keeping records set");
+    case "place-hold":
+      return i18n.t("Records held");
+    case "lift-hold":
+      return i18n.t("Hold lifted");
+    case "propose-erasure":
+      return i18n.t("Erasure proposed");
+    case "approve-erasure":
+      return i18n.t("Erasure approved");
+    case "withdraw-erasure":
+      return i18n.t("Erasure withdrawn");
+    case "erase-person":
+      return i18n.t("Person erased from the records");
+    case "finish-erasure":
+      return i18n.t("Erasure done");
+    case "name-trail-keeper":
+      return i18n.t("Keeper of the trail’s head named");
+    case "send-trail-head":
+      return i18n.t("Trail’s head sent to its keeper");
     case "draw-records":
       return i18n.t("Records drawn at random");
     case "mark-drawn-record":
@@ -374,6 +415,12 @@ export function actionWord(i18n: I18n, action: string): string {
       return i18n.t("Letter acknowledged");
     case "send-notice":
       return i18n.t("Sent");
+    case "bounce-notice":
+      return i18n.t("Came back undeliverable");
+    case "send-again-notice":
+      return i18n.t("Sent again");
+    case "give-on-paper-notice":
+      return i18n.t("Told on paper or in person");
     case "hold-notice":
       return i18n.t("Held");
     case "send-now-notice":

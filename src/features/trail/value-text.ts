@@ -6,10 +6,12 @@ import { formatDuration } from "../../../shared/format/duration";
 import { editNumber, fieldNumber, NO_FIGURE } from "../../../shared/format/number";
 import { isLocale, LOCALE_NAMES, type Locale } from "../../../shared/i18n/index";
 import { isolate } from "../../../shared/i18n/isolate";
+import { DUTY_BEARERS } from "../../../shared/rule-sets/employer-duties";
 import { RULE_SETS } from "../../../shared/rule-sets/index";
 import type { AuditEventView, NamedThing } from "../../../shared/schemas/audit-event";
 import { FINDING_KINDS, FindingState } from "../../../shared/schemas/finding";
 import type { HistoryStretch } from "../../../shared/schemas/history";
+import { bearerWord } from "../../lib/employer-words";
 import {
   gearWord,
   gradeWord,
@@ -160,12 +162,22 @@ const CODED: Readonly<Record<string, Coded>> = {
     ({ round: i18n.t("a round"), "own-report": i18n.t("own report") })[code],
   wornGear: ({ i18n }, code) => gearWord(i18n, code),
   requiredGear: ({ i18n }, code) => gearWord(i18n, code),
+  measuresFor: ({ i18n }, code: string) => bearerText(i18n, code),
+  protectsFor: ({ i18n }, code: string) => bearerText(i18n, code),
+  trainsFor: ({ i18n }, code: string) => bearerText(i18n, code),
+  keepsFor: ({ i18n }, code: string) => bearerText(i18n, code),
+  tellsFor: ({ i18n }, code: string) => bearerText(i18n, code),
   workers: ({ i18n }, code: string) =>
     ({ number: i18n.t("employee number"), name: i18n.t("name") })[code],
 };
 
 const codeText = (words: ValueWords, field: string, value: string): string | undefined =>
   CODED[field]?.(words, value as never);
+
+const bearerText = (i18n: I18n, code: string): string | undefined => {
+  const bearer = DUTY_BEARERS.find((one) => one === code);
+  return bearer && bearerWord(i18n, bearer);
+};
 
 const ruleSetTitle = (i18n: I18n, key: string): string | undefined => {
   const found = RULE_SETS.find((ruleSet) => ruleSet.key === key);

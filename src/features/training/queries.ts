@@ -4,12 +4,7 @@ import {
   useMutation,
   useQueryClient,
 } from "@tanstack/react-query";
-import {
-  TrainingDuePage,
-  TrainingPage,
-  TrainingView,
-  WorkerTraining,
-} from "../../../shared/schemas/training";
+import { TrainingDuePage, TrainingPage, TrainingView } from "../../../shared/schemas/training";
 import { api } from "../../lib/api";
 
 export const trainingQueries = {
@@ -42,12 +37,6 @@ export const trainingQueries = {
     queryOptions({
       queryKey: [...trainingQueries.all, "one", id],
       queryFn: ({ signal }) => api.get(`/trainings/${id}`, { schema: TrainingView, signal }),
-    }),
-  ofWorker: (workerId: string) =>
-    queryOptions({
-      queryKey: [...trainingQueries.all, "worker", workerId],
-      queryFn: ({ signal }) =>
-        api.get(`/workers/${workerId}/training`, { schema: WorkerTraining, signal }),
     }),
 };
 

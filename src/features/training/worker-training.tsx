@@ -1,16 +1,29 @@
 import { useLingui } from "@lingui/react";
-import { useQuery } from "@tanstack/react-query";
+import { queryOptions, useQuery } from "@tanstack/react-query";
 import { formatDate } from "../../../shared/format/date";
 import { formatDuration } from "../../../shared/format/duration";
+import type { WorkerTraining } from "../../../shared/schemas/training";
 import { Failed } from "../../components/failed";
+import { api } from "../../lib/api";
 import { useLocale } from "../../lib/i18n";
-import { trainingQueries } from "./queries";
+import { ownReply } from "../../lib/own-reply";
+
+/** Beneath the key of all trainings, by hand: a worker's first page does without the schemas' library. */
+const trainingsOf = (workerId: string) =>
+  queryOptions({
+    queryKey: ["training", "worker", workerId],
+    queryFn: ({ signal }) =>
+      api.get(`/workers/${workerId}/training`, {
+        schema: ownReply<WorkerTraining>("rows", "due"),
+        signal,
+      }),
+  });
 
 /** A worker's trainings and when the next is due, to the office and to the worker. */
 export function WorkerTrainings({ workerId, today }: { workerId: string; today: string }) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  const { data, error, refetch } = useQuery(trainingQueries.ofWorker(workerId));
+  const { data, error, refetch } = useQuery(trainingsOf(workerId));
   if (error) return <Failed error={error} onRetry={() => void refetch()} />;
   if (!data)
     return (

@@ -28,6 +28,10 @@ export function toldWord(i18n: I18n, state: NoticeState): string {
       return i18n.t("possibly sent");
     case "failed":
       return i18n.t("not sent");
+    case "bounced":
+      return i18n.t("came back undeliverable");
+    case "on-paper":
+      return i18n.t("was told on paper or in person");
     case "withdrawn":
       return i18n.t("withdrawn");
   }

@@ -1,5 +1,5 @@
 import type { I18n } from "@lingui/core";
-import type { ProtectorKind } from "../../../shared/acoustics/types";
+import type { ProtectorKind } from "../../shared/acoustics/types";
 
 /** What is shown to whoever gets a protector of this kind. Common practice, no source. */
 export function instructionsFor(i18n: I18n, kind: ProtectorKind): string[] {

@@ -1,0 +1,154 @@
+import { useLingui } from "@lingui/react";
+import { useQuery } from "@tanstack/react-query";
+import { useState } from "react";
+import { formatInstant } from "../../../shared/format/date";
+import { HoldInput, type HoldView, LiftInput } from "../../../shared/schemas/retention";
+import { ComboboxField } from "../../components/combobox-field";
+import { type DataColumn, DataTable } from "../../components/data-table";
+import { Empty } from "../../components/empty";
+import {
+  Form,
+  FormActions,
+  SubmitButton,
+  showIssuesOn,
+  TextAreaField,
+  useSchemaForm,
+} from "../../components/form";
+import { FormProblem } from "../../components/form-problem";
+import { TextButton } from "../../components/link";
+import { useLocale } from "../../lib/i18n";
+import { searchWorkers } from "./queries";
+import { retentionQueries, useLiftHold, usePlaceHold } from "./retention-queries";
+
+/** Holds that stand, then those that were lifted. */
+export function HoldsTable({ timeZone }: { timeZone: string }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const holds = useQuery(retentionQueries.holds);
+  const at = (instant: string) => formatInstant(instant, timeZone, locale);
+  const columns: DataColumn<HoldView>[] = [
+    {
+      id: "of",
+      head: i18n.t("Whose records"),
+      isRowHead: true,
+      cell: ({ worker, siteName }) => (
+        <>
+          <bdi>{worker ? worker.name : i18n.t("Everybody of {site}", { site: siteName })}</bdi>
+          {worker && <span className="visitor-mail">{siteName}</span>}
+        </>
+      ),
+    },
+    { id: "reason", head: i18n.t("Reason"), cell: ({ reason }) => reason },
+    {
+      id: "placed",
+      head: i18n.t("Held by"),
+      cell: ({ placedBy, placedAt }) => (
+        <>
+          <bdi>{placedBy}</bdi>
+          <span className="visitor-mail">{at(placedAt)}</span>
+        </>
+      ),
+    },
+    {
+      id: "lifted",
+      head: i18n.t("Lifted"),
+      cell: (hold) =>
+        hold.lifted ? (
+          <>
+            <bdi>{hold.lifted.by}</bdi>
+            <span className="visitor-mail">
+              {at(hold.lifted.at)}: {hold.lifted.reason}
+            </span>
+          </>
+        ) : (
+          hold.can.lift && <Lift hold={hold} />
+        ),
+    },
+  ];
+  return (
+    <DataTable
+      caption={i18n.t("Holds")}
+      columns={columns}
+      rows={holds.data ?? []}
+      rowKey={({ id }) => id}
+      state={holds.isPending ? "loading" : holds.isError ? "failed" : "ready"}
+      error={holds.error}
+      onRetry={() => void holds.refetch()}
+      stacksOnPhone
+      groupOf={({ lifted }) =>
+        lifted
+          ? { key: "lifted", label: i18n.t("Lifted") }
+          : { key: "standing", label: i18n.t("Standing") }
+      }
+      empty={<Empty title={i18n.t("Nothing is held.")} />}
+    />
+  );
+}
+
+function Lift({ hold }: { hold: HoldView }) {
+  const { i18n } = useLingui();
+  const [isOpen, setIsOpen] = useState(false);
+  const form = useSchemaForm(LiftInput, {
+    defaultValues: { reason: "" },
+    keepAs: `/legal-holds/${hold.id}/lift`,
+  });
+  const lift = useLiftHold(hold.id, () => setIsOpen(false));
+  if (!isOpen)
+    return (
+      <TextButton onClick={() => setIsOpen(true)}>
+        {i18n.t("Lift")}
+        <span className="sr-only"> {hold.worker?.name ?? hold.siteName}</span>
+      </TextButton>
+    );
+  return (
+    <Form
+      labels="above"
+      aria-label={i18n.t("Lift the hold")}
+      onSubmit={form.handleSubmit((body) =>
+        lift.start(body, { onError: showIssuesOn(form, i18n) }),
+      )}
+    >
+      <TextAreaField form={form} name="reason" rows={2} label={i18n.t("Why it is lifted")} />
+      <FormProblem error={lift.error} />
+      <FormActions>
+        <SubmitButton isBusy={lift.isPending}>{i18n.t("Lift")}</SubmitButton>
+        <TextButton onClick={() => setIsOpen(false)}>{i18n.t("Leave as it was")}</TextButton>
+      </FormActions>
+    </Form>
+  );
+}
+
+/** Holds a worker's records or everybody's of the site. */
+export function HoldForm({ siteId, onPlaced }: { siteId: string; onPlaced: () => void }) {
+  const { i18n } = useLingui();
+  const form = useSchemaForm(HoldInput, {
+    defaultValues: { siteId, workerId: null, reason: "" },
+    keepAs: `/legal-holds new ${siteId}`,
+  });
+  const place = usePlaceHold(() => {
+    form.reset();
+    onPlaced();
+  });
+  return (
+    <Form
+      aria-label={i18n.t("Hold records")}
+      onSubmit={form.handleSubmit((body) =>
+        place.start(body, { onError: showIssuesOn(form, i18n) }),
+      )}
+    >
+      <ComboboxField
+        form={form}
+        name="workerId"
+        label={i18n.t("Worker")}
+        isOptional
+        note={i18n.t("By name or number. Left empty: everybody of the site.")}
+        search={searchWorkers}
+      />
+      <TextAreaField form={form} name="reason" rows={2} label={i18n.t("Reason")} />
+      <FormProblem error={place.error} />
+      <FormActions>
+        <SubmitButton isBusy={place.isPending}>{i18n.t("Hold")}</SubmitButton>
+      </FormActions>
+    </Form>
+  );
+}

@@ -1,0 +1,56 @@
+// @vitest-environment jsdom
+import { QueryClientProvider } from "@tanstack/react-query";
+import { cleanup, render, screen } from "@testing-library/react";
+import { MemoryRouter } from "react-router-dom";
+import { expect, test } from "vitest";
+import type { SessionRole } from "../../shared/schemas/session";
+import { sessionQuery } from "../features/session/session";
+import { createQueryClient } from "../lib/query-client";
+import { TestLanguage } from "../lib/test-i18n";
+import { ProtectorWays } from "./protector-frame";
+import { registerRoutes } from "./register-routes";
+
+function waysOf(role: SessionRole): string[] {
+  const client = createQueryClient();
+  client.setQueryData(sessionQuery.queryKey, {
+    pendingName: null,
+    endedAt: null,
+    user: {
+      id: "01000000-0000-4000-8000-000000000001",
+      name: "N. N.",
+      email: null,
+      language: "en",
+      workerId: null,
+      roles: [role],
+      organizationName: "Ostmere",
+      sites: [],
+      visits: [],
+    },
+  });
+  render(
+    <TestLanguage>
+      <QueryClientProvider client={client}>
+        <MemoryRouter>
+          <ProtectorWays />
+        </MemoryRouter>
+      </QueryClientProvider>
+    </TestLanguage>,
+  );
+  const found = screen.getAllByRole("link").map((link) => link.getAttribute("href") ?? "");
+  cleanup();
+  return found;
+}
+
+test.each([
+  ["officer", 7],
+  ["auditor", 6],
+  ["supervisor", 2],
+] as const)("the ways of the %s lead to pages that open to them", (role, count) => {
+  const ways = waysOf(role);
+  expect(ways).toHaveLength(count);
+  for (const way of ways) {
+    const route = registerRoutes.find(({ path }) => path === way);
+    expect(route, way).toBeDefined();
+    expect(route?.roles ?? ["officer", "auditor", "supervisor"], way).toContain(role);
+  }
+});
