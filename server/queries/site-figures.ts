@@ -29,6 +29,10 @@ interface Counted {
   over: Record<string, number>;
 }
 
+/** What was done on a day `d`. */
+const DID = `JOIN shifts f ON f.worker_id = d.worker_id AND f.date = d.date AND NOT f.is_void
+       JOIN shift_tasks k ON k.shift_revision_id = f.current_revision_id`;
+
 /**
  * People of a year by crew, job, area and task, and of the whole site: each counted once in each row, by the days on which they
  * were of it. The day is judged as a whole, whatever else was done on it.
@@ -36,22 +40,19 @@ interface Counted {
 function countPeople(actor: Actor, asked: YearOfSite): Promise<Counted[]> {
   return rows<Counted>(
     `WITH ${yearDays(actor)},
-     done AS (SELECT * FROM year_days WHERE result_id IS NOT NULL),
-     did AS (SELECT DISTINCT f.worker_id, f.date, k.task_id FROM shifts f JOIN shift_tasks k ON k.shift_revision_id = f.current_revision_id
-       WHERE f.site_id = :siteId AND f.date BETWEEN make_date(:year, 1, 1) AND make_date(:year, 12, 31) AND NOT f.is_void),
-     unit AS (
-       SELECT 'site' AS by, NULL::uuid AS id, d.worker_id, d.date FROM done d
-       UNION ALL SELECT 'crew', y.crew_id, d.worker_id, d.date FROM done d JOIN days y ON y.worker_id = d.worker_id AND y.date = d.date
-       UNION ALL SELECT 'job', w.job_id, d.worker_id, d.date FROM done d JOIN workers w ON w.id = d.worker_id
-       UNION ALL SELECT 'task', x.task_id, x.worker_id, x.date FROM did x
-       UNION ALL SELECT DISTINCT 'area', t.area_id, x.worker_id, x.date FROM did x JOIN tasks t ON t.id = x.task_id),
-     person AS (SELECT u.by, u.id, d.worker_id, ${PERSON_OF_DAYS}
-       FROM done d JOIN unit u ON u.worker_id = d.worker_id AND u.date = d.date GROUP BY u.by, u.id, d.worker_id),
-     over_on AS (SELECT DISTINCT d.worker_id, d.date, concat(d.governing_rule_set, ', ', c.value->>'criterionId') AS criterion
-       FROM done d JOIN day_results r ON r.id = d.result_id CROSS JOIN LATERAL jsonb_array_elements(r.criteria->'governing') c
-       WHERE c.value->>'verdict' = 'over'),
-     over_of AS (SELECT u.by, u.id, o.criterion, count(DISTINCT u.worker_id)::int AS people
-       FROM unit u JOIN over_on o ON o.worker_id = u.worker_id AND o.date = u.date GROUP BY u.by, u.id, o.criterion),
+     done AS MATERIALIZED (
+       SELECT d.*, y.crew_id, w.job_id, jsonb_path_query_array(r.criteria->'governing', '$[*] ? (@.verdict == "over").criterionId') AS over
+       FROM year_days d JOIN day_results r ON r.id = d.result_id JOIN days y ON y.worker_id = d.worker_id AND y.date = d.date
+       JOIN workers w ON w.id = d.worker_id),
+     unit AS MATERIALIZED (
+       SELECT 'site' AS by, NULL::uuid AS id, d.* FROM done d
+       UNION ALL SELECT 'crew', d.crew_id, d.* FROM done d
+       UNION ALL SELECT 'job', d.job_id, d.* FROM done d
+       UNION ALL SELECT 'task', k.task_id, d.* FROM done d ${DID}
+       UNION ALL SELECT 'area', t.area_id, d.* FROM done d ${DID} JOIN tasks t ON t.id = k.task_id),
+     person AS (SELECT d.by, d.id, d.worker_id, ${PERSON_OF_DAYS} FROM unit d GROUP BY d.by, d.id, d.worker_id),
+     over_of AS (SELECT d.by, d.id, concat(d.governing_rule_set, ', ', c.id) AS criterion, count(DISTINCT d.worker_id)::int AS people
+       FROM unit d CROSS JOIN LATERAL jsonb_array_elements_text(d.over) c(id) GROUP BY d.by, d.id, d.governing_rule_set, c.id),
      people AS (SELECT p.by, p.id, json_build_object(${COUNTS_OF_PERSONS}) AS people FROM person p GROUP BY p.by, p.id)
      SELECT p.by, p.id, coalesce(c.name, j.name, a.name, t.name) AS name, p.people,
        (SELECT coalesce(json_object_agg(o.criterion, o.people), '{}') FROM over_of o WHERE o.by = p.by AND o.id IS NOT DISTINCT FROM p.id) AS over
