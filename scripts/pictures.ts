@@ -97,7 +97,7 @@ const timetablePath: Shot["path"] = async (ask) => {
 };
 const activePath: Shot["path"] = async (ask) => {
   const { rows } = (await ask("/protectors")) as { rows: { id: string; kind: string }[] };
-  return `/protectors/${rows.find(({ kind }) => kind === "active-muff")?.id}`;
+  return `/protectors/${rows.find(({ kind }) => kind === "active-earmuff")?.id}`;
 };
 const handOverPath = first("/crews?limit=1", (id) => `/crew-sheet/${id}/hand-over`);
 

@@ -1,5 +1,6 @@
 import type { Writable } from "node:stream";
 import { stringify } from "csv-stringify/sync";
+import { guardFormula } from "../../shared/format/csv";
 import { rows } from "../lib/db";
 import type { Actor } from "../lib/policy";
 import { listReads } from "../queries/access";
@@ -35,13 +36,12 @@ const OF_FORMS: ReadonlySet<string> = new Set(["can", "revision", "canChange", "
 const plain = (row: object): Row =>
   Object.fromEntries(Object.entries(row).filter(([name]) => !OF_FORMS.has(name)));
 
-/** Text that a spreadsheet would take for a formula gets an apostrophe; what is no single value is JSON. */
+/** What is no single value is JSON. */
 function cell(value: unknown): string | number | null {
   if (value === null || value === undefined) return null;
   if (typeof value === "number") return value;
   if (typeof value === "boolean") return value ? "true" : "false";
-  const text = typeof value === "string" ? value : JSON.stringify(value);
-  return /^[=+\-@\t\r]/.test(text) ? `'${text}` : text;
+  return guardFormula(typeof value === "string" ? value : JSON.stringify(value));
 }
 
 const columnName = (name: string) => name.replace(/[A-Z]/g, (letter) => `_${letter.toLowerCase()}`);

@@ -1,20 +1,18 @@
 import { stringify } from "csv-stringify/sync";
+import { guardFormula } from "../../shared/format/csv";
 import { clockAt, REST, SLOT_MIN, stretchesOf } from "../../shared/planning/timetable";
 import type { KeptTimetable } from "../../shared/schemas/timetable";
-
-/** Free text that a spreadsheet would take for a formula starts with an apostrophe, as in every other file. */
-const text = (value: string) => (/^[=+\-@\t\r]/.test(value) ? `'${value}` : value);
 
 /** Who goes where when: a record for each stretch at one task, in the order of people and time. */
 export function timetableCsv({ request, basis, found }: KeptTimetable): string {
   const records = found.table.flatMap((row, person) =>
     stretchesOf(row).map(({ task, from, to }) => [
       basis.people[person]!.employeeNumber,
-      text(basis.people[person]!.name),
+      guardFormula(basis.people[person]!.name),
       clockAt(request.startsAt, from * SLOT_MIN),
       clockAt(request.startsAt, to * SLOT_MIN),
       (to - from) * SLOT_MIN,
-      text(task === REST ? (basis.rest.name ?? "") : basis.tasks[task]!.name),
+      guardFormula(task === REST ? (basis.rest.name ?? "") : basis.tasks[task]!.name),
       task === REST ? basis.rest.levelDb : basis.tasks[task]!.levelDb,
       found.sharesPct[person]!,
     ]),

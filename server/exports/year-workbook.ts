@@ -3,13 +3,13 @@ import type { Writable } from "node:stream";
 import { pipeline } from "node:stream/promises";
 import { parse } from "csv-parse";
 import excel from "exceljs";
-import type pg from "pg";
 import { to as copyTo } from "pg-copy-streams";
-import { inTransaction, row, rows } from "../lib/db";
+import { row } from "../lib/db";
 import { only } from "../lib/only";
 import type { Actor } from "../lib/policy";
 import { trailHead } from "../queries/trail-check";
 import type { YearColumn } from "./year-columns";
+import { readYear } from "./year-snapshot";
 import { tableQuery, type YearRecords, type YearTable, yearTables } from "./year-tables";
 
 /** What a sheet holds at most, its head included. */
@@ -112,61 +112,49 @@ export function streamYearWorkbook(
   rowsPerSheet = SHEET_ROWS,
 ): Promise<void> {
   const { organizationId } = actor;
-  return inTransaction(
-    { organizationId, readOnly: true, isolation: "repeatable-read" },
-    async (transaction) => {
-      await rows(
-        `SELECT set_config('statement_timeout', '30min', true), set_config('client_connection_check_interval', '1s', true),
-           set_config('extra_float_digits', '1', true), set_config('datestyle', 'ISO, YMD', true)`,
-      );
-      const client = (transaction as unknown as { connection: pg.Client }).connection;
-      const named = await row<{ organization: string; site: string; timeZone: string }>(
-        `SELECT csv_text(o.name) AS organization, csv_text(s.name) AS site, s.time_zone AS "timeZone"
+  return readYear(organizationId, async (client) => {
+    const named = await row<{ organization: string; site: string; timeZone: string }>(
+      `SELECT csv_text(o.name) AS organization, csv_text(s.name) AS site, s.time_zone AS "timeZone"
          FROM sites s JOIN organizations o ON o.id = s.organization_id WHERE s.id = :siteId`,
-        { siteId: asked.siteId },
+      { siteId: asked.siteId },
+    );
+    const { organization, site, timeZone } = only(named ? [named] : []);
+    const head = await trailHead(organizationId);
+    const sheets = new Sheets(out, rowsPerSheet);
+    const tables = yearTables(actor, asked);
+    await sheets.add(
+      "about",
+      ["what", "value"],
+      [
+        ["organization", organization],
+        ["site", site],
+        ["time zone", timeZone],
+        ["year", asked.year],
+        ["workers shown as", asked.workers],
+        ["made at", madeAt.toISOString()],
+        ["trail, last seal", head?.number ?? null],
+        ["trail, its SHA-256", head?.hash ?? null],
+      ],
+    );
+    await sheets.add("columns", ["table", "column", "unit", "type", "meaning"], columnsOf(tables));
+    for (const table of tables) {
+      const types = table.columns.map(({ type }) => type);
+      const names = table.columns.map(({ name }) => name);
+      const records = client.query(
+        copyTo(`COPY (${tableQuery(table)}) TO STDOUT WITH (FORMAT csv, ENCODING 'UTF8')`),
       );
-      const { organization, site, timeZone } = only(named ? [named] : []);
-      const head = await trailHead(organizationId);
-      const sheets = new Sheets(out, rowsPerSheet);
-      const tables = yearTables(actor, asked);
-      await sheets.add(
-        "about",
-        ["what", "value"],
-        [
-          ["organization", organization],
-          ["site", site],
-          ["time zone", timeZone],
-          ["year", asked.year],
-          ["workers shown as", asked.workers],
-          ["made at", madeAt.toISOString()],
-          ["trail, last seal", head?.number ?? null],
-          ["trail, its SHA-256", head?.hash ?? null],
-        ],
-      );
-      await sheets.add(
-        "columns",
-        ["table", "column", "unit", "type", "meaning"],
-        columnsOf(tables),
-      );
-      for (const table of tables) {
-        const types = table.columns.map(({ type }) => type);
-        const names = table.columns.map(({ name }) => name);
-        const records = client.query(
-          copyTo(`COPY (${tableQuery(table)}) TO STDOUT WITH (FORMAT csv, ENCODING 'UTF8')`),
-        );
-        try {
-          await pipeline(records, parse(), async (parsed: AsyncIterable<string[]>) => {
-            await sheets.add(table.name, names, cells(parsed, types));
-          });
-        } catch (error) {
-          // What nobody reads any more runs out, or the connection would wait for its reader for ever.
-          records.resume();
-          throw error;
-        }
+      try {
+        await pipeline(records, parse(), async (parsed: AsyncIterable<string[]>) => {
+          await sheets.add(table.name, names, cells(parsed, types));
+        });
+      } catch (error) {
+        // What nobody reads any more runs out, or the connection would wait for its reader for ever.
+        records.resume();
+        throw error;
       }
-      await sheets.end();
-    },
-  );
+    }
+    await sheets.end();
+  });
 }
 
 async function* cells(

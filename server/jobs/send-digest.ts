@@ -6,7 +6,7 @@ import type { Mail } from "../emails/frame";
 import { execute, inTransaction, row, rows } from "../lib/db";
 import { AppError } from "../lib/errors";
 import type { JobPayloads } from "../lib/jobs";
-import type { Mailer } from "../lib/mailer";
+import { type Mailer, retryUnlessSettled } from "../lib/mailer";
 import { type Actor, visible } from "../lib/policy";
 import { Crew } from "../models/worker";
 import { chargePolicy } from "../policies";
@@ -57,8 +57,7 @@ export async function sendDigest(
       [digestId, state, outcome.kind === "sent" ? null : outcome.error],
     ),
   );
-  if (outcome.kind === "later" || outcome.kind === "unknown")
-    throw new Error(`the mail server did not take the digest: ${outcome.error}`);
+  retryUnlessSettled(outcome, "the digest");
 }
 
 async function claim(id: string, publicUrl: string): Promise<{ to: string; mail: Mail } | null> {

@@ -4,7 +4,7 @@ import type { Mail } from "../emails/frame";
 import { recordAudit } from "../lib/audit";
 import { execute, inTransaction, row, rows } from "../lib/db";
 import type { JobPayloads } from "../lib/jobs";
-import type { Mailer } from "../lib/mailer";
+import { type Mailer, retryUnlessSettled } from "../lib/mailer";
 
 interface EscalationRow {
   email: string | null;
@@ -57,8 +57,7 @@ export async function sendEscalation(
       },
     );
   });
-  if (outcome.kind === "later" || outcome.kind === "unknown")
-    throw new Error(`the mail server did not take the escalation: ${outcome.error}`);
+  retryUnlessSettled(outcome, "the escalation");
 }
 
 /** Writes the letter once, or says that there is nothing to send. */

@@ -4,7 +4,7 @@ import { keeperGoneMail, trailHeadMail } from "../emails/trail-head";
 import { recordAudit } from "../lib/audit";
 import { execute, inTransaction, row } from "../lib/db";
 import type { JobPayloads } from "../lib/jobs";
-import type { Mailer } from "../lib/mailer";
+import { type Mailer, retryUnlessSettled } from "../lib/mailer";
 import { trailHead } from "../queries/trail-check";
 
 /**
@@ -50,8 +50,7 @@ export async function sendTrailMail(
         },
       );
   });
-  if (outcome.kind === "later" || outcome.kind === "unknown")
-    throw new Error(`the mail server did not take the trail's head: ${outcome.error}`);
+  retryUnlessSettled(outcome, "the trail's head");
 }
 
 interface MailRow {

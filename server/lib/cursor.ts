@@ -5,6 +5,9 @@ export function encodeCursor(values: readonly (string | number | null)[]): strin
   return Buffer.from(JSON.stringify(values)).toString("base64url");
 }
 
+const cursorUnknown = () =>
+  unprocessable([{ path: ["cursor"], code: "cursor-unknown", params: {} }]);
+
 /** @throws AppError invalid, where the cursor is none of ours. */
 export function decodeCursor(
   cursor: string | undefined,
@@ -21,7 +24,22 @@ export function decodeCursor(
   } catch {
     // Falls through: garbage is refused like any other bad parameter.
   }
-  throw unprocessable([{ path: ["cursor"], code: "cursor-unknown", params: {} }]);
+  throw cursorUnknown();
+}
+
+const uuid = /^[0-9a-f]{8}(-[0-9a-f]{4}){3}-[0-9a-f]{12}$/;
+
+/**
+ * The cursor of a list that is ordered by a time or date and then by id.
+ *
+ * @throws AppError invalid, where the cursor is none of ours.
+ */
+export function decodeTimeCursor(cursor: string | undefined): { at: string; id: string } | null {
+  const values = decodeCursor(cursor, 2);
+  if (!values) return null;
+  const [at, id] = values.map(String) as [string, string];
+  if (!uuid.test(id) || Number.isNaN(Date.parse(at))) throw cursorUnknown();
+  return { at, id };
 }
 
 /** A page from one row more than it holds. */

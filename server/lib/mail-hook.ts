@@ -52,7 +52,7 @@ const field = (text: string, name: string): string | null =>
     .trim() ?? null;
 
 /**
- * What a delivery-status mail says of the mail that it is about; null where it is no such mail or names none. * RFC 3464, 2.1 and 2.3.
+ * What a delivery-status mail says of the mail that it is about; null where it is no such mail or names none (RFC 3464, 2.1 and 2.3).
  */
 export async function readDeliveryReport(mail: Buffer): Promise<MailHookEvent | null> {
   const parsed = await simpleParser(mail, { keepDeliveryStatus: true });

@@ -12,6 +12,12 @@ export interface OutgoingMail {
 /** What became of an attempt: taken, refused for now, refused for good, or nobody knows. */
 export type MailOutcome = { kind: "sent" } | { kind: "later" | "never" | "unknown"; error: string };
 
+/** @throws Error where the server did not take it for now: the queue tries again later. */
+export function retryUnlessSettled(outcome: MailOutcome, what: string): void {
+  if (outcome.kind === "later" || outcome.kind === "unknown")
+    throw new Error(`the mail server did not take ${what}: ${outcome.error}`);
+}
+
 interface SmtpError extends Error {
   code?: string;
   responseCode?: number;

@@ -1,8 +1,7 @@
 import type { z } from "zod";
 import type { ReaderView, ReadFilter, ReadPage } from "../../shared/schemas/access";
-import { decodeCursor, pageFrom } from "../lib/cursor";
+import { decodeTimeCursor, pageFrom } from "../lib/cursor";
 import { rows } from "../lib/db";
-import { issue, unprocessable } from "../lib/errors";
 import { inForce } from "../lib/grants";
 import { type Actor, visible } from "../lib/policy";
 import { readLogPolicy } from "../policies";
@@ -55,16 +54,12 @@ export async function readersOfAccount(): Promise<ReaderView[]> {
   );
 }
 
-const uuid = /^[0-9a-f]{8}(-[0-9a-f]{4}){3}-[0-9a-f]{12}$/;
-
 /** Who read whose record, the latest first. */
 export async function listReads(
   actor: Actor,
   filter: z.output<typeof ReadFilter>,
 ): Promise<z.input<typeof ReadPage>> {
-  const before = decodeCursor(filter.cursor, 2);
-  if (before && (!uuid.test(String(before[1])) || Number.isNaN(Date.parse(String(before[0])))))
-    throw unprocessable([issue(["cursor"], "cursor-unknown")]);
+  const before = decodeTimeCursor(filter.cursor);
   const conditions = [
     visible(readLogPolicy, actor, "r"),
     filter.workerId && "r.worker_id = :workerId",
@@ -79,8 +74,8 @@ export async function listReads(
     {
       workerId: filter.workerId,
       readerId: filter.readerId,
-      at: before?.[0] ?? null,
-      id: before?.[1] ?? null,
+      at: before?.at ?? null,
+      id: before?.id ?? null,
       limit: filter.limit + 1,
     },
   );

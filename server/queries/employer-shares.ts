@@ -5,9 +5,8 @@ import type {
   SharedResultFilter,
   SharedResultPage,
 } from "../../shared/schemas/employer-share";
-import { decodeCursor, pageFrom } from "../lib/cursor";
+import { decodeTimeCursor, pageFrom } from "../lib/cursor";
 import { rows } from "../lib/db";
-import { issue, unprocessable } from "../lib/errors";
 import { inForce } from "../lib/grants";
 import { type Actor, visible } from "../lib/policy";
 import { employerSharePolicy, sharedResultPolicy } from "../policies";
@@ -57,16 +56,12 @@ const sharesOf = async ({ employerGrants }: Actor): Promise<SharedResultPage["sh
   return found.map(({ endsAt, ...share }) => ({ ...share, endsAt: endsAt.toISOString() }));
 };
 
-const uuid = /^[0-9a-f]{8}(-[0-9a-f]{4}){3}-[0-9a-f]{12}$/;
-
 /** Results that hold today, of the people of the reader's employer; the latest day first. */
 export async function listSharedResults(
   actor: Actor,
   filter: z.output<typeof SharedResultFilter>,
 ): Promise<{ page: SharedResultPage; workerIds: string[] }> {
-  const before = decodeCursor(filter.cursor, 2);
-  if (before && (!uuid.test(String(before[1])) || Number.isNaN(Date.parse(String(before[0])))))
-    throw unprocessable([issue(["cursor"], "cursor-unknown")]);
+  const before = decodeTimeCursor(filter.cursor);
   const conditions = [
     visible(sharedResultPolicy, actor, "d"),
     filter.from && "d.date >= CAST(:from AS date)",
@@ -84,8 +79,8 @@ export async function listSharedResults(
     {
       from: filter.from,
       to: filter.to,
-      date: before?.[0] ?? null,
-      id: before?.[1] ?? null,
+      date: before?.at ?? null,
+      id: before?.id ?? null,
       limit: filter.limit + 1,
     },
   );

@@ -2,7 +2,7 @@ import { evaluateDay } from "../../shared/acoustics/day";
 import { buildDayInput, type DayContext } from "../../shared/day/build-day-input";
 import { type DaySummary, summarizeDay } from "../../shared/day/summarize-day";
 import { assignmentsOn, gridTasks, lastWearing, modelsOn } from "./day-grid";
-import type { settingsInForce } from "./site-settings";
+import type { SettingsInForce } from "./site-settings";
 
 /** Somebody of a site, with the nominal day of their job. */
 export interface Expected {
@@ -14,6 +14,28 @@ export interface Expected {
   readonly usualLengthMin: number;
 }
 
+/** What a day of these people is computed with as it usually is: levels of tasks, what is assigned, and how long it was worn last. */
+export async function usualContext(
+  siteId: string,
+  date: string,
+  workerIds: readonly string[],
+  { wearFromDb, creditsActivePart, usesUncertainty }: SettingsInForce,
+) {
+  const ids = `{${workerIds.join(",")}}`;
+  const assignments = await assignmentsOn(ids, date);
+  const worn = await lastWearing(ids, date);
+  const modelIds = assignments.flatMap(({ innerModelId, outerModelId }) =>
+    outerModelId ? [innerModelId, outerModelId] : [innerModelId],
+  );
+  const models = await modelsOn([...new Set(modelIds)], date);
+  const context: DayContext = {
+    tasks: new Map((await gridTasks(siteId, date)).map((task) => [task.id, task])),
+    models: new Map(models.map((model) => [model.modelId, model])),
+    site: { wearFromDb, creditsActivePart, usesUncertainty },
+  };
+  return { assignments, worn, context };
+}
+
 /**
  * What these people's nominal days come to on a date by the usual levels of the tasks and what is assigned then, by worker.
  * Nothing is expected of whoever has no nominal day. A fixed number of statements.
@@ -22,31 +44,15 @@ export async function expectedDays(
   siteId: string,
   date: string,
   people: readonly Expected[],
-  settings: Awaited<ReturnType<typeof settingsInForce>>,
+  settings: SettingsInForce,
 ): Promise<Map<string, DaySummary>> {
   const { governing } = settings;
-  const ids = `{${people.map(({ id }) => id).join(",")}}`;
-  const assignments = await assignmentsOn(ids, date);
-  const worn = await lastWearing(ids, date);
-  const models = await modelsOn(
-    [
-      ...new Set(
-        assignments.flatMap(({ innerModelId, outerModelId }) =>
-          outerModelId ? [innerModelId, outerModelId] : [innerModelId],
-        ),
-      ),
-    ],
+  const { assignments, worn, context } = await usualContext(
+    siteId,
     date,
+    people.map(({ id }) => id),
+    settings,
   );
-  const context: DayContext = {
-    tasks: new Map((await gridTasks(siteId, date)).map((task) => [task.id, task])),
-    models: new Map(models.map((model) => [model.modelId, model])),
-    site: {
-      wearFromDb: settings.wearFromDb,
-      creditsActivePart: settings.creditsActivePart,
-      usesUncertainty: settings.usesUncertainty,
-    },
-  };
   return new Map(
     people.flatMap((person): [string, DaySummary][] => {
       if (person.nominal.length === 0) return [];

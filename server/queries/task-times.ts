@@ -1,11 +1,11 @@
-import { buildDayInput, type DayContext } from "../../shared/day/build-day-input";
+import { buildDayInput } from "../../shared/day/build-day-input";
 import { longestStay } from "../../shared/day/longest-stay";
 import type { TaskTimes } from "../../shared/schemas/own-record";
 import { todayAt } from "../lib/calendar";
 import { row, rows } from "../lib/db";
 import { AppError } from "../lib/errors";
 import type { Worker } from "../models/worker";
-import { assignmentsOn, gridTasks, lastWearing, modelsOn } from "./day-grid";
+import { usualContext } from "./expected-days";
 import { type SettingsInForce, settingsInForce } from "./site-settings";
 
 interface NominalTask {
@@ -55,23 +55,13 @@ export async function taskTimes(worker: Worker): Promise<TaskTimes> {
   const settings = await rulesOn(worker.siteId, date);
   if (!settings) return none;
 
-  const ids = `{${worker.id}}`;
-  const assignments = await assignmentsOn(ids, date);
-  const worn = (await lastWearing(ids, date)).get(worker.id) ?? {};
-  const models = await modelsOn(
-    [
-      ...new Set(
-        assignments.flatMap(({ innerModelId, outerModelId }) => [innerModelId, outerModelId]),
-      ),
-    ].filter((id) => id !== null),
+  const { assignments, worn, context } = await usualContext(
+    worker.siteId,
     date,
+    [worker.id],
+    settings,
   );
-  const { governing, wearFromDb, creditsActivePart, usesUncertainty } = settings;
-  const context: DayContext = {
-    tasks: new Map((await gridTasks(worker.siteId, date)).map((task) => [task.id, task])),
-    models: new Map(models.map((model) => [model.modelId, model])),
-    site: { wearFromDb, creditsActivePart, usesUncertainty },
-  };
+  const wornPcts = worn.get(worker.id) ?? {};
   // As the Crew sheet expects it: what a shift is longer than its nominal day is like the rest.
   const shiftMin = Math.max(place.usualLengthMin ?? 0, nominalMin);
   const usual = nominal.map((task) => ({
@@ -92,7 +82,7 @@ export async function taskTimes(worker: Worker): Promise<TaskTimes> {
       tasks: tasks.map((task) => ({
         taskId: task.taskId,
         durationMin: task.durationMin,
-        wornPct: worn[task.taskId] ?? null,
+        wornPct: wornPcts[task.taskId] ?? null,
         wornIsShiftWide: false,
       })),
       unaccounted: { how: "like-the-rest" } as const,
@@ -102,7 +92,7 @@ export async function taskTimes(worker: Worker): Promise<TaskTimes> {
   };
   return {
     rows: usual.flatMap(({ taskId, name, measuredOn }) => {
-      const stay = longestStay(dayWith(taskId), taskId, governing, shiftMin);
+      const stay = longestStay(dayWith(taskId), taskId, settings.governing, shiftMin);
       if (!stay || stay.isMost || measuredOn === null) return [];
       const { allowedMin, isWorn } = stay;
       return [{ taskId, taskName: name, allowedMin, isWorn, measuredOn }];

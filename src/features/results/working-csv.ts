@@ -1,10 +1,9 @@
 import type { I18n } from "@lingui/core";
 import type { Working, WorkingTable, WorkingValue } from "../../../shared/acoustics/working";
+import { guardFormula } from "../../../shared/format/csv";
 import type { Locale } from "../../../shared/i18n/index";
 import { mathText, sourceText, workingText, workingValueText } from "./working-words";
 
-/** A text that a spreadsheet would take for a formula is marked as text; numbers never come here. */
-const guard = (text: string): string => (/^[=+\-@\t\r]/.test(text) ? `'${text}` : text);
 const field = (text: string): string =>
   /[",\r\n]/.test(text) ? `"${text.replaceAll('"', '""')}"` : text;
 
@@ -58,11 +57,11 @@ export function workingCsv(
     lines.push([
       workingId,
       step,
-      guard(title),
+      guardFormula(title),
       part,
-      guard(row),
-      guard(column),
-      number ? String(number.number) : guard(workingValueText(i18n, locale, value)),
+      guardFormula(row),
+      guardFormula(column),
+      number ? String(number.number) : guardFormula(workingValueText(i18n, locale, value)),
       number?.unit ?? "",
     ]);
   };
