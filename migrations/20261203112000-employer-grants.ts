@@ -3,7 +3,7 @@ import type { Migration } from "../server/lib/migrator";
 const ROLES = "'officer', 'supervisor', 'worker', 'auditor', 'administrator', 'representative'";
 const role = (roles: string) =>
   `ALTER TABLE role_grants DROP CONSTRAINT role_grants_role_check, ADD CONSTRAINT role_grants_role_check CHECK (role IN (${roles}));`;
-const NO_SITE = "'00000000-0000-0000-0000-000000000000'";
+const NONE = "'00000000-0000-0000-0000-000000000000'";
 
 /** For whom a worker works, by date; and a grant to somebody of that employer, at one site and for a time. */
 export const employerGrants: Migration = {
@@ -51,7 +51,7 @@ ALTER TABLE role_grants
     (role = 'employer') = (employer_kind IS NOT NULL) AND (employer_kind IS NULL) = (employer_name IS NULL)
     AND (role <> 'employer' OR (site_id IS NOT NULL AND ends_at IS NOT NULL)));
 DROP INDEX role_grants_once;
-CREATE UNIQUE INDEX role_grants_once ON role_grants (user_id, role, coalesce(site_id, ${NO_SITE}), coalesce(year, 0), coalesce(employer_kind, ''), coalesce(employer_name, ''))
+CREATE UNIQUE INDEX role_grants_once ON role_grants (user_id, role, coalesce(site_id, ${NONE}), coalesce(year, 0), coalesce(mapping_id, ${NONE}), coalesce(employer_kind, ''), coalesce(employer_name, ''))
   WHERE revoked_at IS NULL;
 CREATE INDEX role_grants_employers ON role_grants (site_id, ends_at DESC) WHERE role = 'employer';
 `),
@@ -64,7 +64,7 @@ ALTER TABLE role_grants DROP CONSTRAINT role_grants_employer;
 UPDATE role_grants SET role = 'worker', revoked_at = coalesce(revoked_at, now()) WHERE role = 'employer';
 SET CONSTRAINTS ALL IMMEDIATE;
 ALTER TABLE role_grants DROP COLUMN employer_name, DROP COLUMN employer_kind;
-CREATE UNIQUE INDEX role_grants_once ON role_grants (user_id, role, coalesce(site_id, ${NO_SITE}), coalesce(year, 0)) WHERE revoked_at IS NULL;
+CREATE UNIQUE INDEX role_grants_once ON role_grants (user_id, role, coalesce(site_id, ${NONE}), coalesce(year, 0), coalesce(mapping_id, ${NONE})) WHERE revoked_at IS NULL;
 ${role(ROLES)}
 CALL watch_table('role_grants');
 DROP TRIGGER employer_kept ON workers;

@@ -124,20 +124,6 @@ describe("what a certificate can't say is refused at its field, in words of its 
     ]);
   });
 
-  test("a subject with seven values among those with eight, and the other way round", () => {
-    const seven = [null, ...same(20).slice(1)];
-    const bands = { meanDb: same(25), sdDb: same(2) };
-    for (const subjectsDb of [
-      [same(20), seven, same(24)],
-      [seven, same(20), seven],
-    ])
-      expect(issuesOf({ bands, subjectsDb })).toMatchObject([
-        { path: "subjectsDb.1.0", code: "other-63-hz" },
-      ]);
-    expect(issuesOf({ bands, subjectsDb: [seven, seven] })).toEqual([]);
-    expect(issuesOf({ bands, subjectsDb: [same(20), same(24)] })).toEqual([]);
-  });
-
   test("whatever stands where numbers belong is refused, and nothing is computed from it", () => {
     for (const value of ["x", 3, [], {}, null])
       for (const field of ["bands", "active", "usLabel", "subjectsDb", "percentile", "snrDb"])

@@ -44,7 +44,6 @@ function faultsOfFacts(facts: z.infer<typeof ProtectorFacts>): Fault[] {
   if (bands) for (const { path, code } of faultsOfBands(bands)) add(["bands", ...path], code);
   // The level at the ear rests on means and deviations: without them the subjects would count for nothing.
   if (subjectsDb && !bands) add(["subjectsDb"], "subjects-without-bands");
-  for (const subject of withOther63Hz(subjectsDb)) add(["subjectsDb", subject, 0], "other-63-hz");
   for (const band of belowZero(usLabel?.sdDb)) add(["usLabel", "sdDb", band], "deviation-negative");
   if (percentile && isBelow(percentile.fewDb, percentile.mostDb))
     add(["percentile", "fewDb"], "few-below-most");
@@ -96,20 +95,6 @@ function takesNothing(meanDb: OctaveBandValues): number | null {
 
 const isBackwards = ([, at125, , , , , at4000, at8000]: OctaveBandValues): boolean =>
   [at125, at4000, at8000].every(isNumber) && at125 - Math.max(at4000, at8000) > FALLS_BY_DB;
-
-/**
- * The subjects who differ from most in having a value at 63 Hz: seven values are read from 125 Hz on, so that of eight
- * with one left out the others would stand a band too high.
- */
-function withOther63Hz(subjectsDb: unknown): number[] {
-  const subjects: unknown[] = Array.isArray(subjectsDb) ? subjectsDb : [];
-  const having = (has63Hz: boolean) =>
-    subjects.flatMap((one, index) =>
-      Array.isArray(one) && (one[0] !== null) === has63Hz ? [index] : [],
-    );
-  const [stated, left] = [having(true), having(false)];
-  return left.length > stated.length ? stated : left.length < subjects.length ? left : [];
-}
 
 /** By its report, or by a delay and a gain with no bandwidth that ends before. */
 function claimsHighestBand(active: ActivePart): boolean {

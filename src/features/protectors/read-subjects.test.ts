@@ -46,6 +46,20 @@ describe("subjects out of a spreadsheet", () => {
     expect(line?.[7]).toMatchObject({ code: "too-many-bands", text: "30 29" });
   });
 
+  test("seven values among lines of eight can't be read, and the other way round", () => {
+    const read = (...rows: readonly (readonly number[])[]) =>
+      readSubjects(rows.map(tabs).join("\n"), "en");
+    for (const found of [read(eight, seven, eight), read(seven, eight, seven)]) {
+      expect(found[1]?.[0]).toMatchObject({ code: "other-63-hz" });
+      expect([found[0]?.[0], found[2]?.[0]].some((one) => one instanceof Unreadable)).toBe(false);
+    }
+    expect(read(seven, seven)).toEqual([
+      [null, ...seven],
+      [null, ...seven],
+    ]);
+    expect(read(eight, eight)).toEqual([eight, eight]);
+  });
+
   test("nothing is nobody", () => {
     expect(readSubjects(" \n ", "en")).toEqual([]);
   });

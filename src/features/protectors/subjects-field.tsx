@@ -11,7 +11,7 @@ import type { Typed } from "../../components/number-input";
 import { Status } from "../../components/status";
 import { useLocale } from "../../lib/i18n";
 import type { ProtectorForm } from "./data-fields";
-import { linesOfSubjects, readSubjects } from "./read-subjects";
+import { linesOfSubjects, OTHER_63_HZ, readSubjects } from "./read-subjects";
 import { typedFacts } from "./typed-facts";
 
 type Subjects = readonly (readonly Typed[])[];
@@ -162,7 +162,7 @@ function faultsOfLine(
     const message = messageOf(fault);
     const value = values[band];
     if (message === null) continue;
-    if (get(fault, "type") === OTHER_BANDS)
+    if (value instanceof Unreadable && value.code === OTHER_63_HZ)
       found.push(i18n.t("Line {line}: {message}", { line, message }));
     else if (value === null) missingHz.push(hz);
     else if (value instanceof Unreadable)
@@ -185,9 +185,6 @@ function faultsOfLine(
     );
   return found;
 }
-
-/** The fault of a line as a whole, which the schema puts at its first band. */
-const OTHER_BANDS = "other-63-hz";
 
 function messageOf(error: unknown): string | null {
   const message: unknown = get(error, "message");
