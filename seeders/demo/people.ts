@@ -323,6 +323,9 @@ export const PEOPLE: readonly DemoPerson[] = [
   person("e.lindahl", "E. Lindahl-Osei", OSTMERE, [{ role: "auditor", site: null }], {
     note: "Auditor, both sites",
   }),
+  person("o.castellane", "O. Castellane-Wray", OSTMERE, at("ostmere", "representative"), {
+    note: "Workers’ representative, Ostmere works: counts without names",
+  }),
   person("i.vandermolen", "I. Vandermolen", OSTMERE, [{ role: "administrator", site: null }], {
     note: "Administrator, both sites",
   }),

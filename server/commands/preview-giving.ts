@@ -73,6 +73,7 @@ export async function previewGiving(
     stock: await stockFor(
       given.map(({ id }) => id),
       [input.innerModelId, input.outerModelId].filter((id) => id !== null),
+      input.fromDate,
     ),
   };
 }
@@ -108,18 +109,21 @@ async function usualDays(
   return days;
 }
 
-/** Who would need a device from the shelf, by site and model. */
+/** Who would need a device from the shelf, by site and model; and who of them has it assigned, but not from here. */
 function stockFor(
   workerIds: readonly string[],
   modelIds: readonly string[],
+  fromDate: string,
 ): Promise<GivingPreview["stock"]> {
   return rows(
     `SELECT s.name AS "siteName", m.id AS "modelId", m.name AS "modelName", count(*)::int AS "neededCount",
+       count(*) FILTER (WHERE EXISTS (SELECT 1 FROM assignments a WHERE a.worker_id = w.id
+         AND m.id IN (a.inner_model_id, a.outer_model_id) AND a.valid @> CAST(:fromDate AS date)))::int AS "assignedCount",
        (SELECT sum(k.quantity)::int FROM stock_moves k WHERE k.site_id = s.id AND k.model_id = m.id AND k.part = 'device') AS "stockCount"
      FROM workers w JOIN sites s ON s.id = w.site_id JOIN protector_models m ON m.id = ANY (CAST(:modelIds AS uuid[]))
      WHERE w.id = ANY (CAST(:workerIds AS uuid[])) AND NOT EXISTS (SELECT 1 FROM protector_issues i
        WHERE i.worker_id = w.id AND i.model_id = m.id AND i.ended_on IS NULL)
      GROUP BY s.id, s.name, m.id, m.name ORDER BY s.name, m.name`,
-    { workerIds: `{${workerIds.join(",")}}`, modelIds: `{${modelIds.join(",")}}` },
+    { workerIds: `{${workerIds.join(",")}}`, modelIds: `{${modelIds.join(",")}}`, fromDate },
   );
 }

@@ -130,10 +130,10 @@ async function crewsOf({
       ),
       orders: expected.rows
         .filter(isHere)
-        .flatMap(({ worker, order }) =>
-          order && order.state !== "done"
-            ? [{ name: worker.name, kind: order.kind, facts: order.facts }]
-            : [],
+        .flatMap(({ worker, order, ahead }) =>
+          [ahead, order?.state === "done" ? null : order].flatMap((one) =>
+            one ? [{ name: worker.name, kind: one.kind, facts: one.facts }] : [],
+          ),
         ),
       handOverBy: handOver?.byName ?? null,
     });

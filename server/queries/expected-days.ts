@@ -1,6 +1,7 @@
 import { evaluateDay } from "../../shared/acoustics/day";
 import { buildDayInput, type DayContext } from "../../shared/day/build-day-input";
 import { type DaySummary, summarizeDay } from "../../shared/day/summarize-day";
+import type { ExpectedDay } from "../../shared/findings/expected";
 import { assignmentsOn, gridTasks, lastWearing, modelsOn } from "./day-grid";
 import type { SettingsInForce } from "./site-settings";
 
@@ -13,6 +14,20 @@ export interface Expected {
   /** How long the shift usually is, minutes; a nominal day that is longer is the shift. */
   readonly usualLengthMin: number;
 }
+
+/** What these people's nominal days come to, as a list row shows it; see `evaluateExpected`. */
+export async function expectedDays(
+  siteId: string,
+  date: string,
+  people: readonly Expected[],
+  settings: SettingsInForce,
+): Promise<Map<string, DaySummary>> {
+  const days = await evaluateExpected(siteId, date, people, settings);
+  return new Map([...days].map(([workerId, day]) => [workerId, summarizeExpected(day)]));
+}
+
+export const summarizeExpected = ({ input, evaluation, governing }: ExpectedDay): DaySummary =>
+  summarizeDay(input, evaluation, governing);
 
 /** What a day of these people is computed with as it usually is: levels of tasks, what is assigned, and how long it was worn last. */
 export async function usualContext(
@@ -37,15 +52,15 @@ export async function usualContext(
 }
 
 /**
- * What these people's nominal days come to on a date by the usual levels of the tasks and what is assigned then, by worker.
+ * These people's nominal days, evaluated for a date by the usual levels of the tasks and what is assigned then, by worker.
  * Nothing is expected of whoever has no nominal day. A fixed number of statements.
  */
-export async function expectedDays(
+export async function evaluateExpected(
   siteId: string,
   date: string,
   people: readonly Expected[],
   settings: SettingsInForce,
-): Promise<Map<string, DaySummary>> {
+): Promise<Map<string, ExpectedDay>> {
   const { governing } = settings;
   const { assignments, worn, context } = await usualContext(
     siteId,
@@ -54,7 +69,7 @@ export async function expectedDays(
     settings,
   );
   return new Map(
-    people.flatMap((person): [string, DaySummary][] => {
+    people.flatMap((person): [string, ExpectedDay][] => {
       if (person.nominal.length === 0) return [];
       const tasks = person.nominal.map(({ taskId, durationMin }) => ({
         taskId,
@@ -77,7 +92,7 @@ export async function expectedDays(
         assignments.filter(({ workerId }) => workerId === person.id),
         context,
       );
-      return [[person.id, summarizeDay(input, evaluateDay(input, governing, []), governing)]];
+      return [[person.id, { input, evaluation: evaluateDay(input, governing, []), governing }]];
     }),
   );
 }

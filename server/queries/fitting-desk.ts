@@ -1,5 +1,10 @@
 import { lawAtEar } from "../../shared/acoustics/outside-criterion";
-import { ProtectorChoice, type WornGear } from "../../shared/acoustics/protection/choose-protector";
+import {
+  type OwnFit,
+  ProtectorChoice,
+  type WornGear,
+} from "../../shared/acoustics/protection/choose-protector";
+import { hasToPass } from "../../shared/acoustics/protection/fit-rating";
 import { noisesOf, wornMinOf } from "../../shared/acoustics/protection/noises";
 import type { DayInput } from "../../shared/acoustics/types";
 import { besideScaleDb } from "../../shared/rule-sets";
@@ -86,6 +91,11 @@ async function candidates(
         )
       : [];
   const fits = await fitsOf([worker.id], date, governing.protection);
+  const ofWorker = new Map(
+    [...(fits.get(worker.id) ?? [])].map(
+      ([modelId, fit]) => [modelId, judgedByNeed(fit, need.needDb)] as const,
+    ),
+  );
   const creditedModelIds = creditsActivePart
     ? (await activeChecksOf([worker.id], date)).get(worker.id)
     : undefined;
@@ -100,7 +110,7 @@ async function candidates(
       personalTargetDb: worker.personalTargetDb,
       wornGear,
       wornMin: wornMinOf(noises),
-      fits: fits.get(worker.id) ?? new Map(),
+      fits: ofWorker,
       creditedModelIds,
     });
   const singles = rank(offers);
@@ -115,6 +125,12 @@ async function candidates(
       : [],
   };
 }
+
+/** A fit of which no need was known when it was tested is held against the one at the desk's head, dB. */
+const judgedByNeed = (fit: OwnFit, needDb: number | null): OwnFit =>
+  fit.needDb !== null
+    ? fit
+    : { ...fit, needDb, hasPassed: hasToPass(needDb) ? fit.parDb >= needDb : null };
 
 function issuedTo(actor: Actor, workerId: string): Promise<FittingDesk["issued"]> {
   return rows<FittingDesk["issued"][number]>(

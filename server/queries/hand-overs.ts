@@ -23,22 +23,23 @@ const SOON_DAYS = 14;
 export async function handOverDraft(actor: Actor, crew: Crew): Promise<HandOverDraft> {
   const sheet = await crewSheet(actor, crew);
   const { date, rows: expected } = sheet.expected;
-  const open = expected.flatMap(({ worker, order }) =>
-    order && order.state !== "done" ? [{ worker, order }] : [],
-  );
-  const cannots = await lastCannots(open.map(({ order }) => order.findingId));
+  const open = expected.flatMap(({ worker, order, ahead }) => [
+    ...(ahead ? [{ worker, findingId: null, ...ahead }] : []),
+    ...(order && order.state !== "done" ? [{ worker, ...order }] : []),
+  ]);
+  const cannots = await lastCannots(open.flatMap(({ findingId }) => findingId ?? []));
   const ends = await absencesUntil(
     expected.filter(({ isAbsent }) => isAbsent).map(({ worker }) => worker.id),
     date,
   );
   const content: HandOverContent = {
     sheetDate: date,
-    orders: open.map(({ worker, order: { findingId, kind, facts } }) => ({
+    orders: open.map(({ worker, findingId, kind, facts }) => ({
       findingId,
       workerName: worker.name,
       kind,
       facts,
-      cannot: cannots.get(findingId) ?? null,
+      cannot: (findingId === null ? null : cannots.get(findingId)) ?? null,
     })),
     absent: expected
       .filter(({ isAbsent }) => isAbsent)

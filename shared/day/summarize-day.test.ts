@@ -100,3 +100,29 @@ test("an average with a threshold only bounds the level while worn, on the side 
   // The dose with a threshold of 90 is the instrument's own: 100 · 2^((98 − 90)/5).
   expect(summary.dosePct).toBeCloseTo(100 * 2 ** 1.6, 6);
 });
+
+test("the uncertainty of an energy level never stands beside an average of 5 dB exchange", () => {
+  // ISO 9612 states it of LEX; 29 CFR 1910.95 App. A has no such quantity.
+  const input = dayOf({ kind: "steady" });
+  const task = input.shifts[0]!.tasks[0]!;
+  const sampled: DayInput = {
+    ...input,
+    shifts: [
+      {
+        ...input.shifts[0]!,
+        tasks: [
+          {
+            ...task,
+            level: { ...task.level!, samplesDb: [98, 98, 98], instrument: "dosimeter" },
+          },
+        ],
+      },
+    ],
+  };
+  const under = (key: string) => {
+    const ruleSet = ruleSetInForce(key, input.date)!;
+    return summarizeDay(sampled, evaluateDay(sampled, ruleSet, []), ruleSet).uncertaintyDb;
+  };
+  expect(under("uk-2005")).toBeGreaterThan(0);
+  expect(under("us-general-industry")).toBeNull();
+});

@@ -1,3 +1,5 @@
+import { lawOf } from "../acoustics/exchange-law";
+import { outsideCriterion } from "../acoustics/outside-criterion";
 import type {
   CriterionResult,
   DayEvaluation,
@@ -58,7 +60,8 @@ export function summarizeDay(
     atEarBound: evaluation.atEarBound,
     atEarActiveDb: evaluation.atEarActiveDb,
     atEarAsWorkedDb: evaluation.atEarAsWorkedDb,
-    uncertaintyDb: evaluation.uncertaintyDb,
+    // It belongs to an energy level: a time-weighted average of another exchange rate has none (ISO 9612).
+    uncertaintyDb: lawOf(outsideCriterion(governing)).isEnergy ? evaluation.uncertaintyDb : null,
     whileWornDb: worn.levelDb,
     whileWornBound: worn.bound,
     verdictOutside: headline(outside),

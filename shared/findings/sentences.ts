@@ -92,6 +92,10 @@ export function orderSentence(
         (task ? i18n.t("Find a protector for {task}", { task }) : i18n.t("Find a protector"))
       );
     case "not-worn-long-enough":
+      if (facts.isExpected === true)
+        return task
+          ? i18n.t("See that it stays on the whole time in {task}", { task })
+          : i18n.t("See that it stays on the whole time in noise");
       return task
         ? i18n.t("Ask why it came off at {task}", { task })
         : i18n.t("Ask why it came off");
@@ -190,6 +194,22 @@ export function noticedSentence(
           });
     case "not-worn-long-enough": {
       const offMin = numberOf(facts, "offMin");
+      if (facts.isExpected === true && offMin !== null && levelDb !== null) {
+        const values = {
+          duration: formatDuration(offMin, locale),
+          task,
+          level: formatLevel(levelDb, locale),
+        };
+        return valueDb === null
+          ? i18n.t(
+              "Enough while worn; by the wearing time known it is off for {duration} in {task}: {level} at the ear",
+              values,
+            )
+          : i18n.t(
+              "Enough while worn; by the wearing time known it is off for {duration} in {task}: {level} at the ear, limit {limit}",
+              { ...values, limit: formatLimit(valueDb, locale) },
+            );
+      }
       return offMin === null
         ? i18n.t("Enough while worn, but off for a part of {task}", { task })
         : i18n.t("Enough while worn, but off for {duration} in {task}", {

@@ -2,20 +2,45 @@ import type { I18n } from "@lingui/core";
 import { formatLimit, formatWholeLevel } from "../format/level";
 import type { Locale } from "../i18n/index";
 import type { FindingKind } from "../schemas/finding";
-import { type FindingFacts, leftOf, numberOf, remedyOf, remedyWords, textOf } from "./facts";
+import {
+  type FindingFacts,
+  handoutsOf,
+  leftOf,
+  listWords,
+  numberOf,
+  type ProposedRemedy,
+  remedyOf,
+  remedyWords,
+  textOf,
+} from "./facts";
 
-/** What to do, to the worker, in plain words and whole sentences. No word of the trade, no decimals. */
+/** Whom to ask for what. What is proposed for everywhere leaves out where another was given since. */
+function askFor(i18n: I18n, remedy: ProposedRemedy, givenFor: readonly string[]): string {
+  const ask = i18n.t("Ask your supervisor for {protector}.", {
+    protector: remedyWords(i18n, remedy),
+  });
+  const [first] = handoutsOf(remedy);
+  return givenFor.length === 0 || first.taskNames.length > 0
+    ? ask
+    : `${ask} ${i18n.t("That is for noise outside {tasks}.", { tasks: listWords(i18n, givenFor) })}`;
+}
+
+/**
+ * What to do, to the worker, in plain words and whole sentences. No word of the trade, no decimals. `givenFor`: tasks and
+ * areas for which another protector was given since.
+ */
 export function workerSentence(
   i18n: I18n,
   locale: Locale,
   kind: FindingKind,
   facts: FindingFacts,
+  givenFor: readonly string[] = [],
 ): string {
   const remedy = remedyOf(facts);
   const task = textOf(facts, "taskName");
   const protector = textOf(facts, "protector");
   const ask = remedy
-    ? i18n.t("Ask your supervisor for {protector}.", { protector: remedyWords(i18n, remedy) })
+    ? askFor(i18n, remedy, givenFor)
     : leftOf(facts)?.kind === "wear-throughout"
       ? i18n.t("Keep your protector on all the time in noise.")
       : i18n.t("Ask your supervisor what to do before you work in noise again.");

@@ -166,6 +166,8 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t(
         "Mean and deviation of a band belong together: type both, or leave both empty.",
       );
+    case "subjects-too-few":
+      return i18n.t("At least two test subjects are needed: one alone has no deviation.");
     case "subjects-without-bands":
       return i18n.t(
         "Mean and deviation by band are still empty, and without them the subjects count for nothing: take both from the subjects, or type them.",

@@ -110,6 +110,8 @@ export const GivingPreview = z.object({
       modelName: z.string(),
       /** Who does not have one in hand yet. */
       neededCount: z.number(),
+      /** Of them, who has it assigned already: from elsewhere, or before issues were kept here. */
+      assignedCount: z.number(),
       /** Null: nothing of it was ever entered there. */
       stockCount: z.number().nullable(),
     }),

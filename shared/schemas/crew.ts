@@ -81,11 +81,17 @@ export const CrewSheetRow = z.object({
       kind: FindingRow.shape.kind,
       state: FindingRow.shape.state,
       facts: z.record(z.string(), z.unknown()),
+      /** The latest day that its finding rests on; null: the facts are of the day expected. */
+      ofDate: IsoDate.nullable(),
       /** It rests on rules that no longer govern the site: the day from which others do. */
       rulesUntil: FindingRow.shape.rulesUntil,
       revision: z.number(),
       canMarkDone: z.boolean(),
     })
+    .nullable(),
+  /** What the expected day asks for though no finding is open on it: nobody marks it done, it goes once the day is right. */
+  ahead: z
+    .object({ kind: FindingRow.shape.kind, facts: z.record(z.string(), z.unknown()) })
     .nullable(),
 });
 export type CrewSheetRow = z.infer<typeof CrewSheetRow>;

@@ -133,7 +133,16 @@ export const ProtectorFacts = z.object({
     .default(null),
   usLabel: z.object({ meanDb: nine, sdDb: nine }).nullable().default(null),
   /** By test subject; two or more. */
-  subjectsDb: z.array(OctaveBands).min(2).max(40).nullable().default(null),
+  subjectsDb: z
+    .array(OctaveBands)
+    .max(40)
+    .refine((subjects) => subjects.length >= 2, {
+      params: { code: "subjects-too-few" },
+      // Also beside faults of a line: all that is wrong is said at once.
+      when: ({ value }) => Array.isArray(value),
+    })
+    .nullable()
+    .default(null),
 });
 export type ProtectorFacts = z.infer<typeof ProtectorFacts>;
 

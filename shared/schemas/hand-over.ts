@@ -8,7 +8,8 @@ export const HandOverContent = z.object({
   /** Orders that are open, the sheet's own order. */
   orders: z.array(
     z.object({
-      findingId: z.uuid(),
+      /** Null: the day ahead asks for it, and no finding is open on it. */
+      findingId: z.uuid().nullable(),
       workerName: z.string(),
       kind: FindingRow.shape.kind,
       facts: z.record(z.string(), z.unknown()),

@@ -37,6 +37,12 @@ describe("what a certificate can't say is refused at its field, in words of its 
       "subjectsDb",
       "subjects-without-bands",
     ],
+    [
+      "a single subject",
+      { bands: { meanDb: same(20), sdDb: same(3) }, subjectsDb: [same(20)] },
+      "subjectsDb",
+      "subjects-too-few",
+    ],
     ["H without M and L", { hDb: 30 }, "mDb", "hml-all-three"],
     [
       "a negative deviation",

@@ -321,6 +321,28 @@ describe("the fitting desk", () => {
     expect(within(form).getByRole("alert")).toHaveTextContent(/more than an ear can have/);
   });
 
+  test("what is out of the question says why, and is not held out to be tried", async () => {
+    at = desk({
+      candidates: [
+        candidate(muff, "Fenmuff", "earmuff"),
+        candidate(plug, "Alder foam", "foam-plug", {
+          excludedBy: { code: "gear", gear: "helmet" },
+          decidedBy: "compatibility",
+        }),
+        candidate(id(5), "Sedge band", "banded-plug", {
+          excludedBy: { code: "no-data", gear: null },
+          decidedBy: "compatibility",
+        }),
+      ],
+    });
+    open(paths.fittingOf(worker));
+    expect(await screen.findByRole("button", { name: "Try Fenmuff" })).toBeVisible();
+    // Its own fit may be just what is missing.
+    expect(screen.getByRole("button", { name: "Try Sedge band" })).toBeVisible();
+    expect(screen.getByText("not with helmet")).toBeVisible();
+    expect(screen.queryByRole("button", { name: "Try Alder foam" })).toBeNull();
+  });
+
   test("where nothing has to come off nothing is passed, and under Appendix B the label less 7 stands beside", async () => {
     at = desk({
       ruleSetKey: "us-general-industry",

@@ -1,11 +1,18 @@
 import { describe, expect, test } from "vitest";
 import {
+  buildAssignment,
+  buildCrew,
   buildFinding,
+  buildFitTest,
+  buildJob,
+  buildProtector,
   buildSite,
   buildSupervisorOf,
+  buildTask,
   buildUser,
   buildWorker,
   type Client,
+  daysFromToday,
   insert,
   select,
   signInAs,
@@ -83,4 +90,172 @@ describe("undo", () => {
     expect([late.status, late.body.code]).toEqual([409, "too-late-to-undo"]);
     expect(late.body.detail).toContain("too late");
   });
+});
+
+/** A worker of a British crew in eight hours of rumble, nearly all of it below 500 Hz, and what the sheet says of them. */
+async function buildRumble(creditedFrom: number) {
+  const site = await buildSite({ governingRuleSet: "uk-2005", timeZone: "Europe/London" });
+  const { organizationId } = site;
+  await insert("site_settings", {
+    organizationId,
+    siteId: site.id,
+    number: 2,
+    effectiveFrom: daysFromToday(creditedFrom),
+    governingRuleSet: "uk-2005",
+    comparisonRuleSets: [],
+    creditsActivePart: true,
+  });
+  const task = await buildTask({
+    site,
+    name: "Run-up",
+    levelDb: 98.7,
+    octaveBandsDb: [105, 112, 104, 88, 78, 70, 65, 60],
+  });
+  const job = await buildJob({ site, tasks: [{ taskId: task.id, durationMin: 480 }] });
+  const worker = await buildWorker({ site, jobId: job.id });
+  const bands = {
+    meanDb: [16, 17, 20, 26, 28, 30, 35, 35],
+    sdDb: [2, 2, 2, 2, 2, 2, 2, 2],
+  };
+  const active = {
+    attenuationDb: [8, 8, 8, 6, 2, -1, -1, -1],
+    delayS: null,
+    gain: null,
+    maximumDb: null,
+    bandwidthHz: null,
+    saturatesAboveDb: null,
+    batteryMin: 600,
+  };
+  const model = await buildProtector({
+    organizationId,
+    kind: "active-earmuff",
+    data: { bands, active },
+  });
+  await buildAssignment({ worker, inner: model });
+  // It takes the same off and needs no battery: what the register would give instead.
+  await buildProtector({
+    organizationId,
+    name: "Alder foam",
+    kind: "foam-plug",
+    data: { bands: { meanDb: [24, 24, 24, 26, 28, 30, 34, 36], sdDb: bands.sdDb } },
+  });
+  const crew = await buildCrew({ site, members: [worker] });
+  const client = await signInAs(await buildUser({ organizationId, roles: ["officer"] }));
+  const saveDay = async (days: number) => {
+    const saved = await client.post(`/crews/${crew.id}/day`, {
+      date: daysFromToday(days),
+      rows: [
+        {
+          kind: "worked",
+          workerId: worker.id,
+          localStart: "06:00",
+          lengthMin: 480,
+          tasks: [{ taskId: task.id, durationMin: 480, wornPct: 100 }],
+        },
+      ],
+    });
+    expect(saved.status).toBeLessThan(300);
+  };
+  const passCheck = (days: number) =>
+    buildFitTest({ worker, model, testedOn: daysFromToday(days), parDb: null, activePassed: true });
+  const expected = async () => (await client.get(`/crews/${crew.id}/sheet`)).body.expected.rows[0];
+  return { worker, site, task, client, crew, saveDay, passCheck, expected };
+}
+
+describe("an order beside the day that is expected", () => {
+  test("falls away where the active part is credited now and the days since were good", async () => {
+    const { saveDay, passCheck, expected } = await buildRumble(-4);
+    await saveDay(-5);
+    expect(await expected()).toMatchObject({
+      order: { kind: "protects-too-little", ofDate: null, facts: { isExpected: true } },
+      figures: { word: "too-little" },
+      ahead: null,
+    });
+    await passCheck(-4);
+    await saveDay(-3);
+    await saveDay(-2);
+    expect(await expected()).toMatchObject({
+      order: null,
+      ahead: null,
+      figures: { word: "good", verdictAtEar: "under" },
+    });
+  });
+
+  test("falls away as soon as the credited part makes the day to come right", async () => {
+    const { saveDay, passCheck, expected } = await buildRumble(-4);
+    await saveDay(-5);
+    await passCheck(-1);
+    expect(await expected()).toMatchObject({ order: null, figures: { word: "good" } });
+  });
+
+  test("stays where a day since was in order, and the day to come is not", async () => {
+    const { worker, saveDay, passCheck, expected, site } = await buildRumble(-4);
+    await saveDay(-5);
+    await passCheck(-4);
+    await saveDay(-3);
+    await insert("site_settings", {
+      organizationId: worker.organizationId,
+      siteId: site.id,
+      number: 3,
+      effectiveFrom: daysFromToday(-1),
+      governingRuleSet: "uk-2005",
+      comparisonRuleSets: [],
+      creditsActivePart: false,
+    });
+    expect(await expected()).toMatchObject({
+      order: { kind: "protects-too-little" },
+      figures: { word: "too-little" },
+    });
+  });
+
+  test("proposes by what the verdict goes by: the own fit of a protector", async () => {
+    const { worker, saveDay, expected } = await buildRumble(1);
+    const foam = (await select<{ id: string }>(
+      "SELECT id FROM protector_models WHERE organization_id = $1 AND name = 'Alder foam'",
+      [worker.organizationId],
+    )) as [{ id: string }];
+    await saveDay(-5);
+    const byLabel = (await expected()).order.facts.remedy;
+    expect(byLabel.names).toEqual(["Alder foam"]);
+    const organizationId = worker.organizationId;
+    await buildFitTest({
+      worker,
+      model: { id: foam[0].id, organizationId, name: "Alder foam" },
+      parDb: 20,
+    });
+    const byFit = (await expected()).order.facts.remedy;
+    expect(byFit.names).toEqual(["Alder foam"]);
+    expect(byFit.atEarDb).toBeCloseTo(98.7 - 20, 6);
+    expect(byLabel.atEarDb).not.toBeCloseTo(byFit.atEarDb, 1);
+  });
+});
+
+test("expected over the limit by the wearing time alone, it is something to do and says why", async () => {
+  const { worker, site, task, client, crew, passCheck, saveDay, expected } = await buildRumble(-4);
+  await passCheck(-4);
+  await saveDay(-2);
+  expect(await expected()).toMatchObject({ order: null, ahead: null, figures: { word: "good" } });
+  const looks = [{ workerId: worker.id, taskId: task.id, wornCount: 2, seenCount: 3 }];
+  const sent = await client.post("/wearing-rounds", {
+    siteId: site.id,
+    seenOn: daysFromToday(-1),
+    looks,
+  });
+  expect(sent.status).toBe(201);
+  const row = await expected();
+  expect(row).toMatchObject({
+    order: null,
+    figures: { word: "good", verdictAtEar: "over" },
+    ahead: {
+      kind: "not-worn-long-enough",
+      facts: { taskName: "Run-up", valueDb: 87, isExpected: true },
+    },
+  });
+  expect(row.ahead.facts.levelDb).toBeCloseTo(row.figures.atEarDb, 9);
+  expect(row.ahead.facts.offMin).toBeCloseTo(160, 6);
+  // It goes with the shift as well.
+  const draft = await client.get(`/crews/${crew.id}/hand-over-draft`);
+  expect(draft.body.content.orders).toMatchObject([
+    { findingId: null, kind: "not-worn-long-enough" },
+  ]);
 });

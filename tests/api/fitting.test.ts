@@ -303,6 +303,16 @@ describe("the fitting desk", () => {
     expect(body.can).toEqual({ test: true, issue: true });
   });
 
+  test("a fit of which no need was known is held against the need at the head", async () => {
+    const { client, worker, muff } = await openDesk();
+    await buildFitTest({ worker, model: muff, parDb: 11.5, needDb: null });
+    const { body } = await client.get(`/workers/${worker.id}/fitting`);
+    const row = body.candidates.find(({ modelId }: Candidate) => modelId === muff.id);
+    expect(row.lastFit).toMatchObject({ hasPassed: false, needDb: body.need.needDb });
+    // The test itself stays as it was recorded.
+    expect(body.tests).toMatchObject([{ hasPassed: null, needDb: null }]);
+  });
+
   test("a worker’s own days come before the job’s, and a stricter target before the rule’s", async () => {
     const { site, client } = await openDesk();
     const worker = await buildWorker({ site, personalTargetDb: 80 });

@@ -93,10 +93,10 @@ test("before a group is given a protector: whose usual day changes verdict, and 
   });
   expect(entered.status).toBe(201);
   const today = new Date().toISOString().slice(0, 10);
-  const ask = (modelId: string) =>
+  const ask = (modelId: string, taskId: string | null = null) =>
     client.post("/assignments/many/preview", {
       workerIds: [bare.id, weakly.id, holder.id, idle.id],
-      assignment: { innerModelId: modelId, fromDate: today },
+      assignment: { innerModelId: modelId, fromDate: today, taskId },
     });
   const { status, body } = await ask(good.id);
   expect(status).toBe(200);
@@ -112,7 +112,13 @@ test("before a group is given a protector: whose usual day changes verdict, and 
     ["Ada", null, "good"],
     ["Ben", "too-little", "good"],
   ]);
-  expect(body.stock).toMatchObject([{ modelId: good.id, neededCount: 3, stockCount: 2 }]);
+  expect(body.stock).toMatchObject([
+    { modelId: good.id, neededCount: 3, assignedCount: 0, stockCount: 2 },
+  ]);
+
+  // For a task it is a further use: who has it for everywhere, but never issued here, is counted apart.
+  const forTask = await ask(good.id, task.id);
+  expect(forTask.body.stock).toMatchObject([{ neededCount: 4, assignedCount: 1 }]);
 
   // The other way round: whoever would fall to too little, and nothing is stored by the look.
   const worse = await ask(weak.id);

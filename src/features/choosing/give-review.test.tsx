@@ -1,4 +1,4 @@
-import { render, screen } from "@testing-library/react";
+import { render, screen, within } from "@testing-library/react";
 import userEvent from "@testing-library/user-event";
 import { MemoryRouter } from "react-router-dom";
 import { expect, test, vi } from "vitest";
@@ -40,9 +40,30 @@ const preview: GivingPreview = {
     tooMany: 0,
   },
   stock: [
-    { siteName: "Works", modelId: "one", modelName: "Plug", neededCount: 12, stockCount: 7 },
-    { siteName: "Works", modelId: "two", modelName: "Muff", neededCount: 12, stockCount: 30 },
-    { siteName: "Works", modelId: "three", modelName: "Band", neededCount: 12, stockCount: null },
+    {
+      siteName: "Works",
+      modelId: "one",
+      modelName: "Plug",
+      neededCount: 12,
+      assignedCount: 2,
+      stockCount: 7,
+    },
+    {
+      siteName: "Works",
+      modelId: "two",
+      modelName: "Muff",
+      neededCount: 12,
+      assignedCount: 0,
+      stockCount: 30,
+    },
+    {
+      siteName: "Works",
+      modelId: "three",
+      modelName: "Band",
+      neededCount: 12,
+      assignedCount: 0,
+      stockCount: null,
+    },
   ],
 };
 
@@ -77,8 +98,12 @@ test("a stock that does not go round is a caution, not a refusal", async () => {
     screen.getByRole("heading", { name: "The usual days of 3 people change verdict or word" }),
   ).toHaveFocus();
   expect(screen.getByText("12 of Plug to hand out at Works, 7 in stock.")).toBeVisible();
+  expect(screen.getByText(/2 of them have it assigned, but not issued here\./)).toBeVisible();
   expect(screen.queryByText(/of Muff to hand out|of Band to hand out/)).toBeNull();
   expect(screen.getByText("2 people from “none” to “good”")).toBeVisible();
+  // Each line is named once, however many ways its people go.
+  const [lines] = screen.getAllByRole("list");
+  expect(within(lines!).getAllByText(/^(At the ear|Protector while worn)$/)).toHaveLength(2);
   await userEvent.click(screen.getByRole("button", { name: "Give Plug + Muff" }));
   expect(onGive).toHaveBeenCalledOnce();
 });

@@ -68,6 +68,7 @@ export function GiveReview({
   const short = stock.filter(
     ({ neededCount, stockCount }) => stockCount !== null && stockCount < neededCount,
   );
+  const tally = countFromTo(changes);
   const dayCell = (line: Line) => {
     const cell = ({ verdictAtEar, word, atEarDb }: Change["before"]) =>
       line === "word"
@@ -102,7 +103,7 @@ export function GiveReview({
             { count: withoutDayCount },
           )}`}
       </p>
-      {short.map(({ siteName, modelId, modelName, neededCount, stockCount }) => (
+      {short.map(({ siteName, modelId, modelName, neededCount, assignedCount, stockCount }) => (
         <p key={`${siteName} ${modelId}`} className="review-lead">
           <b>
             {i18n.t("{needed} of {protector} to hand out at {site}, {stock} in stock.", {
@@ -112,26 +113,37 @@ export function GiveReview({
               stock: Math.max(stockCount ?? 0, 0),
             })}
           </b>{" "}
+          {assignedCount > 0 &&
+            `${i18n.t(
+              "{count, plural, one {# of them has it assigned, but not issued here.} other {# of them have it assigned, but not issued here.}}",
+              { count: assignedCount },
+            )} `}
           {i18n.t("It can be given all the same; who has none in hand yet has to wait for it.")}
         </p>
       ))}
       {changes.length > 0 && (
         <ul className="review-tally">
-          {countFromTo(changes).map(({ line, before, after, count: people }) => (
-            <li key={`${line} ${before} ${after}`}>
-              <span>{lineWord(i18n, line)}</span>
-              <b>
-                {i18n.t(
-                  "{count, plural, one {# person} other {# people}} from “{before}” to “{after}”",
-                  {
-                    count: people,
-                    before: withinSentence(stateWord(i18n, before), locale),
-                    after: withinSentence(stateWord(i18n, after), locale),
-                  },
-                )}
-              </b>
-            </li>
-          ))}
+          {LINES.map((line) => [line, tally.filter((one) => one.line === line)] as const)
+            .filter(([, ofLine]) => ofLine.length > 0)
+            .map(([line, ofLine]) => (
+              <li key={line}>
+                <span>{lineWord(i18n, line)}</span>
+                <span className="review-tally-counts">
+                  {ofLine.map(({ before, after, count: people }) => (
+                    <b key={`${before} ${after}`}>
+                      {i18n.t(
+                        "{count, plural, one {# person} other {# people}} from “{before}” to “{after}”",
+                        {
+                          count: people,
+                          before: withinSentence(stateWord(i18n, before), locale),
+                          after: withinSentence(stateWord(i18n, after), locale),
+                        },
+                      )}
+                    </b>
+                  ))}
+                </span>
+              </li>
+            ))}
         </ul>
       )}
       <FormProblem error={error} />

@@ -36,7 +36,7 @@ export function HandOverLists({
     <>
       <Part title={i18n.t("Open orders")} none={i18n.t("No order is open.")}>
         {content.orders.map(({ findingId, workerName, kind, facts, cannot }) => (
-          <li key={findingId}>
+          <li key={findingId ?? workerName}>
             <b>{workerName}</b>
             <span className="block">{orderSentence(i18n, locale, kind, facts)}</span>
             {cannot && (

@@ -16,6 +16,7 @@ const open: SheetOrder = {
   kind: "no-protector",
   state: "new",
   facts: {},
+  ofDate: "2026-11-30",
   rulesUntil: null,
   revision: 4,
   canMarkDone: true,

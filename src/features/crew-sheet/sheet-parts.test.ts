@@ -3,6 +3,7 @@ import type { CrewSheetRow } from "../../../shared/schemas/crew";
 import { testI18n } from "../../lib/test-i18n";
 import {
   asksAboutDay,
+  expectedFault,
   expectedTitle,
   isForToday,
   lastTitle,
@@ -45,6 +46,7 @@ const order = (facts: Partial<Order> = {}): Order => ({
   kind: "protects-too-little",
   state: "new",
   facts: {},
+  ofDate: "2026-11-30",
   rulesUntil: null,
   revision: 1,
   canMarkDone: true,
@@ -58,6 +60,7 @@ const row = (name: string, facts: Partial<CrewSheetRow> = {}): CrewSheetRow => (
   lentTo: null,
   figures: figures(),
   order: null,
+  ahead: null,
   ...facts,
 });
 const names = (rows: readonly CrewSheetRow[]) => rows.map(({ worker }) => worker.name);
@@ -78,6 +81,32 @@ describe("expected today", () => {
     expect(names(part.quiet)).toEqual(["Nwosu"]);
     expect(names(part.open)).toEqual(["Lindqvist"]);
     expect(names(part.absent)).toEqual(["Grzelak"]);
+  });
+
+  test("over the limit by the wearing time is something to do, though no finding is open", () => {
+    const sorli = row("Sørli", {
+      figures: figures({ atEarDb: 91.3, verdictAtEar: "over" }),
+      ahead: { kind: "not-worn-long-enough", facts: { isExpected: true } },
+    });
+    const sheet = splitExpected([row("Nwosu"), sorli]);
+    expect([names(sheet.flagged), names(sheet.quiet)]).toEqual([["Sørli"], ["Nwosu"]]);
+    expect(expectedTitle(i18n, sheet, false)).toBe("One order before they start");
+    expect(expectedFault(sorli)).toBe("not-worn-long-enough");
+  });
+
+  test("a row is headed by its own day: an order of an earlier one does not make it too little", () => {
+    expect(expectedFault(row("Castellow", { order: order() }))).toBeNull();
+    const short = figures({ word: "too-little" });
+    expect(expectedFault(row("Castellow", { order: order(), figures: short }))).toBe(
+      "protects-too-little",
+    );
+    const over = order({ kind: "over-limit-at-ear" });
+    expect(expectedFault(row("Tavernor", { order: over }))).toBeNull();
+    expect(
+      expectedFault(row("Tavernor", { order: over, figures: figures({ verdictAtEar: "over" }) })),
+    ).toBe("over-limit-at-ear");
+    const asked = order({ kind: "not-worn-long-enough" });
+    expect(expectedFault(row("Dąbrowik", { order: asked }))).toBe("not-worn-long-enough");
   });
 
   test("an order that is done stays on the sheet and is not counted", () => {

@@ -63,21 +63,46 @@ function isOverLimitOutside({
 
 /** Under the limit by luck, or unable to hear a warning: a protector at fault, the worse first. */
 const FAULTS: readonly string[] = ["too-little", "too-much"];
-const hasWordFault = ({ figures }: CrewSheetRow): boolean =>
-  figures !== null && figures.word !== null && FAULTS.includes(figures.word);
+const hasFault = ({ word }: DayFigures): boolean => word !== null && FAULTS.includes(word);
+const hasWordFault = ({ figures }: CrewSheetRow): boolean => figures !== null && hasFault(figures);
 
 /** An order that asks about the day itself is what its row is headed by, or the two would contradict each other. */
 export const asksAboutDay = ({ order }: CrewSheetRow): boolean =>
   order !== null && order.state !== "done" && ABOUT_THE_PAST.has(order.kind);
 
-export const isOpenOrder = ({ order }: CrewSheetRow): boolean =>
-  order !== null && order.state !== "done";
+export const isOpenOrder = ({ order, ahead }: CrewSheetRow): boolean =>
+  Boolean(ahead) || (order !== null && order.state !== "done");
+
+/** Somebody has to do something about it, or has done it. */
+const isAsked = ({ order, ahead }: CrewSheetRow): boolean => Boolean(ahead) || order !== null;
+
+/**
+ * What a row of the sheet for the shift to come is headed by: the fault that its day has, or else, where the order is of
+ * an earlier day, what that day itself comes to (null).
+ */
+export function expectedFault({ figures, order, ahead }: CrewSheetRow): FindingKind | null {
+  if (ahead) return ahead.kind;
+  if (!order || !figures) return order?.kind ?? null;
+  switch (order.kind) {
+    case "over-limit-at-ear":
+      return figures.word === null || figures.verdictAtEar === "over" || hasFault(figures)
+        ? order.kind
+        : null;
+    case "protects-too-little":
+    case "protects-too-much":
+      return figures.word === null || hasFault(figures) ? order.kind : null;
+    case "no-protector":
+      return figures.hasProtector === "no" || figures.word === null ? order.kind : null;
+    default:
+      return order.kind;
+  }
+}
 
 export function splitExpected(rows: readonly CrewSheetRow[]): SheetPart {
   const present = rows.filter(isHere);
-  const rest = present.filter(({ order }) => order === null);
+  const rest = present.filter((row) => !isAsked(row));
   return {
-    flagged: present.filter(({ order }) => order !== null),
+    flagged: present.filter(isAsked),
     quiet: rest.filter(({ figures }) => figures !== null),
     open: rest.filter(({ figures }) => figures === null),
     absent: rows.filter(({ isAbsent }) => isAbsent),

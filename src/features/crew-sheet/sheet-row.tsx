@@ -6,6 +6,7 @@ import { noticedSentence, orderSentence, remedyFigure } from "../../../shared/fi
 import { findingWord } from "../../../shared/findings/words";
 import { formatDate, formatDay } from "../../../shared/format/date";
 import { formatLimit } from "../../../shared/format/level";
+import { startsSentence } from "../../../shared/format/words";
 import type { Locale } from "../../../shared/i18n/index";
 import { isolate } from "../../../shared/i18n/isolate";
 import type { CrewSheetRow } from "../../../shared/schemas/crew";
@@ -20,7 +21,7 @@ import { useLocale } from "../../lib/i18n";
 import { employerWords, lentWords } from "./beside-name";
 import { OrderActions } from "./order-actions";
 import type { SheetOrder } from "./queries";
-import { asksAboutDay, type PartName, sheetVerdict } from "./sheet-parts";
+import { asksAboutDay, expectedFault, type PartName, sheetVerdict } from "./sheet-parts";
 
 const STRIP_PX = 200;
 
@@ -91,7 +92,9 @@ function RowWord({
     if (verdict === "cant-tell-yet" || verdict === "not-assessed")
       return <Verdict verdict={verdict} />;
   }
-  if (order && (part === "expected" || (figures && asksAboutDay(row))))
+  const fault = part === "expected" ? expectedFault(row) : null;
+  if (fault) return <b>{findingWord(i18n, fault)}</b>;
+  if (part === "last" && order && figures && asksAboutDay(row))
     return <b>{findingWord(i18n, order.kind)}</b>;
   if (!figures) return <Verdict verdict="not-assessed" />;
   if (figures.word !== null) {
@@ -119,27 +122,50 @@ function BesideName({ row: { worker, isLoan, lentBy, lentTo } }: { row: CrewShee
   return words.length > 0 && <span className="sheet-loan"> {words.join(", ")}</span>;
 }
 
-function Noticed({ order }: { order: SheetOrder }) {
+/** An order of an earlier day beside the word of the day expected says of which day it is. */
+function noticedOf(i18n: I18n, locale: Locale, order: SheetOrder, saysDay: boolean): string {
+  const noticed = noticedSentence(i18n, locale, order.kind, order.facts);
+  if (order.rulesUntil)
+    return `${noticed}; ${i18n.t("under the rules before {date}", {
+      date: formatDate(order.rulesUntil, locale),
+    })}`;
+  return saysDay && order.ofDate
+    ? i18n.t("{day}: {sentence}", {
+        day: startsSentence(formatDay(order.ofDate, locale), locale),
+        sentence: noticed,
+      })
+    : noticed;
+}
+
+function Noticed({ order, saysDay = false }: { order: SheetOrder; saysDay?: boolean }) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  const noticed = noticedSentence(i18n, locale, order.kind, order.facts);
   const remedy = remedyOf(order.facts);
   const figure = remedyFigure(locale, order.facts, (word) => protectorWordText(i18n, word));
   return (
     <>
-      {i18n.t("{sentence}.", {
-        sentence: order.rulesUntil
-          ? `${noticed}; ${i18n.t("under the rules before {date}", {
-              date: formatDate(order.rulesUntil, locale),
-            })}`
-          : noticed,
-      })}
+      {i18n.t("{sentence}.", { sentence: noticedOf(i18n, locale, order, saysDay) })}
       {remedy && figure && (
         <>
           {" "}
           {i18n.t("{protector}: day {figure}.", { protector: remedyWords(i18n, remedy), figure })}
         </>
       )}
+    </>
+  );
+}
+
+/** What the day to come asks for: it goes by itself once that day is right, so that there is nothing to mark. */
+function AheadOrder({ kind, facts }: NonNullable<CrewSheetRow["ahead"]>) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const words = (sentence: string) => i18n.t("{sentence}.", { sentence });
+  return (
+    <>
+      <div className="sheet-order">
+        <div className="sheet-order-words">{words(orderSentence(i18n, locale, kind, facts))}</div>
+      </div>
+      <p className="sheet-noticed">{words(noticedSentence(i18n, locale, kind, facts))}</p>
     </>
   );
 }
@@ -212,6 +238,7 @@ export function SheetRow({
       {reasonWords && (
         <p className="sheet-noticed">{i18n.t("Because {reason}.", { reason: reasonWords })}</p>
       )}
+      {isFlagged && row.ahead && <AheadOrder {...row.ahead} />}
       {isFlagged &&
         order &&
         (nextSheet ? (
@@ -247,10 +274,12 @@ export function SheetRow({
             words={i18n.t("{sentence}.", {
               sentence: orderSentence(i18n, locale, order.kind, order.facts),
             })}
-            noticed={<Noticed order={order} />}
+            noticed={
+              <Noticed order={order} saysDay={part === "expected" && expectedFault(row) === null} />
+            }
           />
         ))}
-      {isFlagged && !order && (
+      {isFlagged && !order && !row.ahead && (
         <p className="sheet-noticed">{i18n.t("Nothing for you to do; the officer looks at it.")}</p>
       )}
     </li>

@@ -6,6 +6,7 @@ import type { Candidate } from "../../../shared/schemas/fit";
 import { Button } from "../../components/button";
 import { type DataColumn, DataTable } from "../../components/data-table";
 import { Empty } from "../../components/empty";
+import { TextButton } from "../../components/link";
 import { ProtectorWord, protectorWordText } from "../../components/protector-word";
 import { useLocale } from "../../lib/i18n";
 import { passWord } from "../../lib/register-words";
@@ -177,11 +178,14 @@ export function CandidatesTable({
       id: "pick",
       head: <span className="sr-only">{pickWord}</span>,
       kind: "right",
-      cell: (row) => (
-        <Button aria-label={pickLabel?.(row.name)} onClick={() => onPick?.(row)}>
-          {pickWord}
-        </Button>
-      ),
+      // What does not go, or is no longer in use, is not held out; where only data are missing it is, more quietly.
+      cell: (row) => {
+        const wires = { "aria-label": pickLabel?.(row.name), onClick: () => onPick?.(row) };
+        if (row.excludedBy === null) return <Button {...wires}>{pickWord}</Button>;
+        return row.excludedBy.code === "no-data" ? (
+          <TextButton {...wires}>{pickWord}</TextButton>
+        ) : null;
+      },
     });
   return (
     <>

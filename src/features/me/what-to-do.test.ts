@@ -183,6 +183,43 @@ describe("what to do", () => {
     expect(since("cant-tell-yet")).toEqual(asksOver);
   });
 
+  test("what is asked for everywhere says that it is not for where another was given since", () => {
+    const over = finding({
+      ...tooLittle,
+      kind: "over-limit-at-ear",
+      facts: { ...tooLittle.facts, levelDb: 88.2 },
+    });
+    const given = (facts: Partial<OwnProtector>) =>
+      protector({ id: "given", use: "task", fromDate: "2026-12-01", ...facts });
+    const asks =
+      "About 88 decibels reached your ear; that is too much. Ask your supervisor for Alder foam.";
+    expect(say(day(), [protector()], [over])[0]).toBe(asks);
+    expect(say(day(), [protector(), given({ useName: "Chipping" })], [over])[0]).toBe(
+      `${asks} That is for noise outside Chipping.`,
+    );
+    const before = given({ useName: "Chipping", fromDate: "2026-05-04" });
+    expect(say(day(), [protector(), before], [over])[0]).toBe(asks);
+    // What is asked for some tasks names them already.
+    const remedy = {
+      names: ["Alder foam"],
+      modelIds: ["a"],
+      isHeld: true,
+      inTasks: [
+        {
+          names: ["Sedge"],
+          modelIds: ["b"],
+          isHeld: false,
+          taskIds: ["t"],
+          taskNames: ["Teardown"],
+        },
+      ],
+    };
+    const inTeardown = finding({ ...over, facts: { ...over.facts, remedy } });
+    expect(say(day(), [protector(), given({ useName: "Chipping" })], [inTeardown])[0]).toMatch(
+      /Ask your supervisor for Sedge for Teardown\.$/,
+    );
+  });
+
   test("a fit is told of what is worn, and not of what was only tried", () => {
     const failed = finding({
       kind: "fit-failed",

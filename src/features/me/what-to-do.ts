@@ -76,6 +76,14 @@ function asked({ findings, protectors, lastDay }: Known): OwnFinding[] {
     .toSorted((one, other) => placeOf(one.kind) - placeOf(other.kind));
 }
 
+/** Where another protector was given since a finding about the whole day, while one of before is still worn elsewhere. */
+function givenFor({ facts, lastDate }: OwnFinding, protectors: readonly OwnProtector[]): string[] {
+  if (textOf(facts, "taskName") !== null) return [];
+  return protectors.flatMap(({ useName, fromDate }) =>
+    useName !== null && fromDate > lastDate ? [useName] : [],
+  );
+}
+
 function wear(i18n: I18n, one: OwnProtector): string {
   const protector = nameOf(i18n, one);
   return one.useName === null
@@ -121,7 +129,9 @@ export function whatToDo(i18n: I18n, locale: Locale, known: Known): [string, ...
   const open = asked(known);
   const isProtectorInDoubt = open.some(({ kind }) => ABOUT_PROTECTOR.has(kind));
   const sentences = [
-    ...open.map(({ kind, facts }) => workerSentence(i18n, locale, kind, facts)),
+    ...open.map((one) =>
+      workerSentence(i18n, locale, one.kind, one.facts, givenFor(one, protectors)),
+    ),
     ...(isProtectorInDoubt ? [] : whatToWear(i18n, protectors)),
   ];
   const [first, ...further] = new Set(sentences);

@@ -1,0 +1,143 @@
+import { judgedAtEar } from "../acoustics/protection/judged-at-ear";
+import type { DayEvaluation, DayInput, RuleSetVersion } from "../acoustics/types";
+import type { FindingKind } from "../schemas/finding";
+import { findCauses } from "./causes";
+import { type FindingFacts, leftOf } from "./facts";
+import { ORDER_KINDS, WORN_KINDS } from "./orders";
+import type { Proposal } from "./remedy";
+
+/** A day to come, evaluated from the nominal day, the usual levels and what is known of the wearing. */
+export interface ExpectedDay {
+  readonly input: DayInput;
+  readonly evaluation: DayEvaluation;
+  readonly governing: RuleSetVersion;
+}
+
+/** What an expected day asks for, in the way of a finding; nothing of it is stored. */
+export interface Ahead {
+  readonly kind: FindingKind;
+  readonly facts: FindingFacts;
+}
+
+/** Not worn long enough is a fault of the day only where it takes the day over: else it is asked about afterwards. */
+const FAULT_KINDS: ReadonlySet<FindingKind> = new Set(
+  [...WORN_KINDS].filter((kind) => kind !== "not-worn-long-enough"),
+);
+
+const atEarDbOf = ({ counted, atEarDb }: DayEvaluation): number | null =>
+  counted ? counted.atEarDb : atEarDb;
+
+/** What is wrong with what is worn on the day as it is expected, the most urgent first. */
+export function faultsAhead({ input, evaluation, governing }: ExpectedDay): Ahead[] {
+  const causes = findCauses(input, evaluation, governing).filter(
+    ({ concerns }) => concerns === "worker",
+  );
+  const limitDb = limitAtEarDb(input, governing);
+  const atEarDb = atEarDbOf(evaluation);
+  const isOverByWearing = limitDb !== null && atEarDb !== null && atEarDb > limitDb;
+  return causes
+    .filter(
+      ({ kind }) => FAULT_KINDS.has(kind) || (kind === "not-worn-long-enough" && isOverByWearing),
+    )
+    .map(({ kind, facts }) => ({ kind, facts: { ...facts, isExpected: true } }))
+    .toSorted((a, b) => ORDER_KINDS.indexOf(a.kind) - ORDER_KINDS.indexOf(b.kind));
+}
+
+/** Where the rule has no limit at the ear, what its protectors have to bring the shift down to. */
+function limitAtEarDb(
+  { personalTargetDb }: DayInput,
+  { criteria, protection }: RuleSetVersion,
+): number | null {
+  const hasLimit = criteria.some(
+    ({ kind, judged, quantity }) =>
+      kind === "limit" &&
+      judged === "at-the-ear" &&
+      quantity !== "peak" &&
+      quantity !== "slow-maximum",
+  );
+  if (hasLimit || protection.targetDb === null) return null;
+  return Math.min(protection.targetDb, personalTargetDb ?? protection.targetDb);
+}
+
+/**
+ * The one order of an expected day. Where the protector would be enough if it stayed on, it is about the wearing, in the
+ * task in which most gets in. Null: nothing is wrong.
+ */
+export function orderAhead(
+  day: ExpectedDay,
+  faults: readonly Ahead[],
+  proposal: Proposal | null,
+): Ahead | null {
+  const [worst] = faults;
+  if (!worst) return null;
+  const facts = { ...worst.facts, ...proposal };
+  if (leftOf(facts)?.kind !== "wear-throughout" && worst.kind !== "not-worn-long-enough")
+    return { kind: worst.kind, facts };
+  const short = shortest(day);
+  return short
+    ? {
+        kind: "not-worn-long-enough",
+        facts: { ...facts, ...short, levelDb: atEarDbOf(day.evaluation) },
+      }
+    : { kind: worst.kind, facts };
+}
+
+/** The task off in which lets in the most, dB; for how long it is off, minutes. */
+function shortest({ input, evaluation }: ExpectedDay): FindingFacts | null {
+  const timed = new Map(
+    input.shifts.flatMap(({ tasks }) => tasks.map((task) => [task.id, task] as const)),
+  );
+  const off = evaluation.tasks.flatMap((atEar) => {
+    const task = timed.get(atEar.timedTaskId);
+    if (!task || !atEar.isWorn || task.wornPct === null || task.wornPct >= 100) return [];
+    const { inTaskDb } = judgedAtEar(atEar, task.protection, input.site);
+    const weight = inTaskDb === null ? 0 : task.durationMin * 10 ** (inTaskDb / 10);
+    const offMin = (task.durationMin * (100 - task.wornPct)) / 100;
+    return [{ weight, taskName: task.name, offMin }];
+  });
+  if (off.length === 0) return null;
+  const { taskName, offMin } = off.reduce((a, b) => (b.weight > a.weight ? b : a));
+  return { taskName, offMin };
+}
+
+/** A finding of the past as far as it is to be held against the days since. */
+interface Past {
+  readonly kind: FindingKind;
+  readonly state: string;
+  /** ISO date of its latest day. */
+  readonly lastDate: string;
+  /** The active part was credited on that day already. */
+  readonly wasCredited: boolean;
+}
+
+/**
+ * Whether nothing is to be done any more about what is worn: a day since was in order, and the one to come is; or the
+ * active part, which the latest day of the finding did not credit yet, is credited and makes the day to come right.
+ */
+export function isSettled(
+  { kind, state, lastDate, wasCredited }: Past,
+  lastInOrder: string | null,
+  expected: { readonly day: ExpectedDay; readonly faults: readonly Ahead[] } | null,
+): boolean {
+  if (!WORN_KINDS.has(kind) || (expected && expected.faults.length > 0)) return false;
+  if (lastInOrder !== null && lastInOrder > lastDate) return true;
+  const isByDevice = kind === "protects-too-little" || kind === "over-limit-at-ear";
+  return (
+    isByDevice &&
+    state !== "done" &&
+    !wasCredited &&
+    expected?.day.evaluation.counted !== undefined &&
+    expected.day.evaluation.word !== null
+  );
+}
+
+/** The facts of an order as it holds for the day to come: its figures are that day's, and so is what is proposed. */
+export function factsAhead(
+  { kind, facts }: Ahead,
+  faults: readonly Ahead[],
+  proposal: Proposal | null,
+): FindingFacts {
+  const now = faults.find((fault) => fault.kind === kind);
+  if (!now) return facts;
+  return { ...facts, ...now.facts, ...proposal };
+}
