@@ -110,6 +110,7 @@ test("the local sign-in knows somebody for each role, and the code of the worker
     "administrator",
     "auditor",
     "officer",
+    "representative",
     "supervisor",
     "worker",
   ]);
