@@ -1,7 +1,7 @@
 import { useLingui } from "@lingui/react";
 import { type FieldValues, useController } from "react-hook-form";
 import { Gear } from "../../shared/schemas/fit";
-import { gearWord } from "../lib/register-words";
+import { gearWord } from "../../shared/words/register-words";
 import { Field, type FieldProps } from "./form";
 
 /** Helmet, glasses, respirator: those that are worn, or asked for, beside a protector. */

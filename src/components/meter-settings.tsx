@@ -1,8 +1,8 @@
 import { useLingui } from "@lingui/react";
 import { useId, useState } from "react";
 import type { MeterSettings } from "../../shared/acoustics/types";
+import { responseWord, settingsWords } from "../../shared/words/register-words";
 import { useLocale } from "../lib/i18n";
-import { responseWord, settingsWords } from "../lib/register-words";
 import { NumberInput, type Typed } from "./number-input";
 
 /** The settings that dosimeters are commonly read under. */

@@ -15,6 +15,7 @@ import { isolate } from "../../shared/i18n/isolate";
 import { RULE_SETS, ruleSetVersion } from "../../shared/rule-sets";
 import type { FindingView } from "../../shared/schemas/finding";
 import type { FollowUpView } from "../../shared/schemas/follow-up";
+import { gradeWord } from "../../shared/words/register-words";
 import { Button, ButtonLink } from "../components/button";
 import { type DataColumn, DataTable } from "../components/data-table";
 import {
@@ -42,7 +43,6 @@ import { LookAtNotices } from "../features/notices/outgoing-notice";
 import { OfficeLink } from "../features/session/office-link";
 import { useUser } from "../features/session/session";
 import { useLocale } from "../lib/i18n";
-import { gradeWord } from "../lib/register-words";
 import { paths } from "../paths";
 import { useSiteChoice } from "./site-choice";
 import "../styles/findings.css";

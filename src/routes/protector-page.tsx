@@ -3,6 +3,7 @@ import { useQuery } from "@tanstack/react-query";
 import { useState } from "react";
 import { useParams } from "react-router-dom";
 import { formatDate, formatInstant, formatShortDate, localDateOf } from "../../shared/format/date";
+import { protectorKindWord } from "../../shared/words/register-words";
 import { Button } from "../components/button";
 import { RecomputeProgress } from "../components/change-preview";
 import { DataTable } from "../components/data-table";
@@ -23,7 +24,6 @@ import { UseFacts } from "../features/protectors/use-facts";
 import { useUser } from "../features/session/session";
 import { useEditParam } from "../lib/edit-param";
 import { useLocale } from "../lib/i18n";
-import { protectorKindWord } from "../lib/register-words";
 import { paths } from "../paths";
 import "../styles/protectors.css";
 

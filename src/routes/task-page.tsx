@@ -6,6 +6,14 @@ import type { OctaveBandValues } from "../../shared/acoustics/types";
 import { formatDate, formatInstant, formatShortDate } from "../../shared/format/date";
 import { formatLevel, formatLevelWithUnit } from "../../shared/format/level";
 import { formatNumber } from "../../shared/format/number";
+import {
+  gearWords,
+  gradeWord,
+  instrumentClassWord,
+  metricWord,
+  settingsWords,
+  zoneWord,
+} from "../../shared/words/register-words";
 import { Button, ButtonLink } from "../components/button";
 import { RecomputeProgress } from "../components/change-preview";
 import { DataTable } from "../components/data-table";
@@ -22,14 +30,6 @@ import { Spectrum } from "../features/tasks/spectrum";
 import { SpectrumSource } from "../features/tasks/spectrum-source";
 import { TaskHeadForm } from "../features/tasks/task-head-form";
 import { useLocale } from "../lib/i18n";
-import {
-  gearWords,
-  gradeWord,
-  instrumentClassWord,
-  metricWord,
-  settingsWords,
-  zoneWord,
-} from "../lib/register-words";
 import { paths } from "../paths";
 import { RuleWays } from "./register-frame";
 import { useSiteChoice } from "./site-choice";

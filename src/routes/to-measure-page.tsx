@@ -1,13 +1,13 @@
 import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { formatShortDate } from "../../shared/format/date";
+import { changeKindTitle } from "../../shared/surveys/words";
 import { ButtonLink } from "../components/button";
 import { TextLink } from "../components/link";
 import { Folio, MarginNote, PageBody, PageHead, Section } from "../components/page";
 import { NeedsTable } from "../features/surveys/needs-table";
 import { surveyQueries } from "../features/surveys/queries";
 import { RemeasureInterval } from "../features/surveys/remeasure-form";
-import { changeKindTitle } from "../features/surveys/survey-words";
 import { useLocale } from "../lib/i18n";
 import { paths } from "../paths";
 import { MeasuringWays } from "./measuring-frame";

@@ -6,6 +6,7 @@ import { formatLimit } from "../../shared/format/level";
 import { LOCALE_NAMES, LOCALES } from "../../shared/i18n/index";
 import { WorkerInput, WorkerView } from "../../shared/schemas/worker";
 import { localDate } from "../../shared/time/zone";
+import { gearWords } from "../../shared/words/register-words";
 import type { ConflictField } from "../components/conflict-dialog";
 import { Failed } from "../components/failed";
 import {
@@ -24,7 +25,6 @@ import { jobQueries } from "../features/jobs/queries";
 import { useUser } from "../features/session/session";
 import { workerQueries } from "../features/workers/queries";
 import { useLocale } from "../lib/i18n";
-import { gearWords } from "../lib/register-words";
 import { paths } from "../paths";
 import "../styles/findings.css";
 

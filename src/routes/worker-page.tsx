@@ -10,6 +10,7 @@ import { LOCALE_NAMES } from "../../shared/i18n/index";
 import type { DayFigures } from "../../shared/schemas/finding";
 import type { HistoryPage, WorkerView } from "../../shared/schemas/worker";
 import { localDate } from "../../shared/time/zone";
+import { gearWords } from "../../shared/words/register-words";
 import { Button, ButtonLink } from "../components/button";
 import { type DataColumn, DataTable } from "../components/data-table";
 import {
@@ -48,7 +49,6 @@ import { SignInSlip } from "../features/workers/sign-in-slip";
 import { employerWords } from "../features/workers/workers-table";
 import { apiAddress } from "../lib/api";
 import { useLocale } from "../lib/i18n";
-import { gearWords } from "../lib/register-words";
 import { paths } from "../paths";
 import "../styles/findings.css";
 import "../styles/fits.css";

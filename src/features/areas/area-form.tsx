@@ -2,9 +2,9 @@ import { useLingui } from "@lingui/react";
 import { useQueryClient } from "@tanstack/react-query";
 import type { z } from "zod";
 import { AreaInput, AreaView } from "../../../shared/schemas/site";
+import { zoneWord } from "../../../shared/words/register-words";
 import { CheckField, type Choice, RadioGroup, SelectField, TextField } from "../../components/form";
 import { RecordForm } from "../../components/record-form";
-import { zoneWord } from "../../lib/register-words";
 import { areaQueries } from "./queries";
 
 type View = z.infer<typeof AreaView>;

@@ -10,6 +10,7 @@ import {
 } from "../../../shared/schemas/choice";
 import type { Candidate, Gear } from "../../../shared/schemas/fit";
 import type { ManyAssignmentsInput } from "../../../shared/schemas/worker";
+import { gearWord, passWord } from "../../../shared/words/register-words";
 import { useChangePreview } from "../../components/change-preview";
 import { DataTable } from "../../components/data-table";
 import { Empty } from "../../components/empty";
@@ -21,7 +22,6 @@ import { useChangeKey } from "../../lib/change-key";
 import { useLocale } from "../../lib/i18n";
 import { useOneAtATime } from "../../lib/one-at-a-time";
 import { references } from "../../lib/references";
-import { gearWord, passWord } from "../../lib/register-words";
 import { paths } from "../../paths";
 import { GiveReview } from "./give-review";
 import { useAssignMany } from "./queries";

@@ -7,11 +7,11 @@ import type { Locale } from "../../../shared/i18n/index";
 import { isolate } from "../../../shared/i18n/isolate";
 import type { TrustRun } from "../../../shared/schemas/follow-up";
 import { RUN_DOUBTS, type RunDoubtCode } from "../../../shared/schemas/run-doubts";
+import { doubtWord } from "../../../shared/words/run-words";
 import { DataTable } from "../../components/data-table";
 import { Empty } from "../../components/empty";
 import { TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
-import { doubtWord } from "../../lib/run-words";
 import { paths } from "../../paths";
 
 const isDoubt = (code: string): code is RunDoubtCode =>

@@ -3,13 +3,13 @@ import { formatDuration } from "../../../shared/format/duration";
 import { formatLevel, formatLevelChange } from "../../../shared/format/level";
 import { withinSentence } from "../../../shared/format/words";
 import type { Candidate } from "../../../shared/schemas/fit";
+import { passWord } from "../../../shared/words/register-words";
 import { Button } from "../../components/button";
 import { type DataColumn, DataTable } from "../../components/data-table";
 import { Empty } from "../../components/empty";
 import { TextButton } from "../../components/link";
 import { ProtectorWord, protectorWordText } from "../../components/protector-word";
 import { useLocale } from "../../lib/i18n";
-import { passWord } from "../../lib/register-words";
 import { type ActiveCredit, decidedWord, exclusionWord, judgedByWord } from "./fit-words";
 
 /** A device, or two of them, among candidates. */

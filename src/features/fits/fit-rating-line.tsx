@@ -1,9 +1,9 @@
 import { useLingui } from "@lingui/react";
 import { fitRating, hasToPass } from "../../../shared/acoustics/protection/fit-rating";
 import { formatLevel } from "../../../shared/format/level";
+import { passWord } from "../../../shared/words/register-words";
 import { Status } from "../../components/status";
 import { useLocale } from "../../lib/i18n";
-import { passWord } from "../../lib/register-words";
 import { FitScale } from "./fit-scale";
 
 /** What the trials typed so far come to, beside what the noise asks for. */

@@ -8,7 +8,7 @@ import type {
   IssueView,
   RefusalInput,
 } from "../../../shared/schemas/fit";
-import { gearWord, passWord } from "../../lib/register-words";
+import { gearWord, passWord } from "../../../shared/words/register-words";
 
 export function fitMethodWord(i18n: I18n, method: FitMethod): string {
   switch (method) {

@@ -6,10 +6,10 @@ import { formatNumber } from "../../../shared/format/number";
 import { withoutStop } from "../../../shared/format/words";
 import type { BudgetView, GroupBudgetView } from "../../../shared/schemas/group";
 import { noBudgetWords, sourceWord } from "../../../shared/surveys/words";
+import { instrumentClassWord, strategyWord } from "../../../shared/words/register-words";
 import { DataTable } from "../../components/data-table";
 import { ShareBar } from "../../components/share-bar";
 import { useLocale } from "../../lib/i18n";
-import { instrumentClassWord, strategyWord } from "../../lib/register-words";
 
 type Item = BudgetView["items"][number];
 type Narrowing = BudgetView["narrowings"][number];

@@ -4,6 +4,7 @@ import { get, type UseFormReturn } from "react-hook-form";
 import type { z } from "zod";
 import { formatShortDate } from "../../../shared/format/date";
 import { InstrumentInput, InstrumentView } from "../../../shared/schemas/run";
+import { instrumentKindWord, settingsWords } from "../../../shared/words/register-words";
 import { Button } from "../../components/button";
 import {
   CheckField,
@@ -22,7 +23,6 @@ import {
 } from "../../components/meter-settings";
 import { RecordForm } from "../../components/record-form";
 import { useLocale } from "../../lib/i18n";
-import { instrumentKindWord, settingsWords } from "../../lib/register-words";
 import { instrumentQueries } from "./queries";
 
 type Input = z.input<typeof InstrumentInput>;

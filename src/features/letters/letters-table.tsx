@@ -3,10 +3,10 @@ import type { ReactNode } from "react";
 import { formatShortDate } from "../../../shared/format/date";
 import { formatLevel } from "../../../shared/format/level";
 import type { LetterRow } from "../../../shared/schemas/letter";
+import { letterStateNote, letterStateWord } from "../../../shared/words/letter-words";
 import { type DataColumn, DataTable, type DataTableProps } from "../../components/data-table";
 import { TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
-import { letterStateNote, letterStateWord } from "../../lib/letter-words";
 import { paths } from "../../paths";
 
 export function LettersTable({

@@ -16,6 +16,7 @@ import {
 } from "../../../shared/schemas/outing";
 import { RunView } from "../../../shared/schemas/run";
 import { localDate } from "../../../shared/time/zone";
+import { settingsWords } from "../../../shared/words/register-words";
 import { Button } from "../../components/button";
 import { ComboboxField } from "../../components/combobox-field";
 import {
@@ -33,7 +34,6 @@ import { useChangeKey } from "../../lib/change-key";
 import { useLocale } from "../../lib/i18n";
 import { problemText } from "../../lib/problem-text";
 import { searchWorkers } from "../../lib/references";
-import { settingsWords } from "../../lib/register-words";
 import { paths } from "../../paths";
 import { type Ask, OutingAsk } from "./outing-ask";
 import { overlapOf } from "./overlap";

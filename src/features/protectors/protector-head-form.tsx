@@ -2,6 +2,7 @@ import { useLingui } from "@lingui/react";
 import { useQueryClient } from "@tanstack/react-query";
 import type { z } from "zod";
 import { ProtectorDetail, ProtectorInput } from "../../../shared/schemas/protector";
+import { protectorKindWord } from "../../../shared/words/register-words";
 import { Button } from "../../components/button";
 import { ConflictDialog } from "../../components/conflict-dialog";
 import {
@@ -15,7 +16,6 @@ import {
   useSchemaForm,
 } from "../../components/form";
 import { FormProblem } from "../../components/form-problem";
-import { protectorKindWord } from "../../lib/register-words";
 import { useRevisedSave } from "../../lib/revised-save";
 import { protectorKinds } from "./kinds";
 import { protectorQueries } from "./queries";

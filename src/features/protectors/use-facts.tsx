@@ -3,7 +3,7 @@ import type { z } from "zod";
 import type { ProtectorKind } from "../../../shared/acoustics/types";
 import { Gear } from "../../../shared/schemas/fit";
 import type { ProtectorUse } from "../../../shared/schemas/protector";
-import { gearWord } from "../../lib/register-words";
+import { gearWord } from "../../../shared/words/register-words";
 import { hasCushions, hasTips } from "./kinds";
 
 /** Sizes, what it goes with, and when cushions and tips are due: what the certificate says beside its numbers. */

@@ -2,8 +2,8 @@ import { useLingui } from "@lingui/react";
 import { useState } from "react";
 import { get } from "react-hook-form";
 import { Gear } from "../../../shared/schemas/fit";
+import { gearWord } from "../../../shared/words/register-words";
 import { Field, NumberField } from "../../components/form";
-import { gearWord } from "../../lib/register-words";
 import type { ProtectorForm } from "./data-fields";
 import { hasCushions, hasTips } from "./kinds";
 

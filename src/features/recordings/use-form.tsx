@@ -5,6 +5,7 @@ import { formatDate } from "../../../shared/format/date";
 import { formatLevel } from "../../../shared/format/level";
 import { InstrumentClassName } from "../../../shared/schemas/evaluation";
 import { RecordingUse, RecordingView } from "../../../shared/schemas/recording";
+import { instrumentClassWord } from "../../../shared/words/register-words";
 import {
   DateField,
   Form,
@@ -15,7 +16,6 @@ import {
 } from "../../components/form";
 import { LookActions, ReviewedChange, useReviewedChange } from "../../components/reviewed-change";
 import { useLocale } from "../../lib/i18n";
-import { instrumentClassWord } from "../../lib/register-words";
 import { recordingQueries } from "./queries";
 import { showRecordingIssuesOn } from "./recording-issues";
 

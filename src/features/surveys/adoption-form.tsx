@@ -3,6 +3,7 @@ import { useQueryClient } from "@tanstack/react-query";
 import { formatDate } from "../../../shared/format/date";
 import { formatLevel } from "../../../shared/format/level";
 import { SurveyAdoption, SurveyDetail } from "../../../shared/schemas/survey";
+import { nextWords } from "../../../shared/surveys/words";
 import {
   DateField,
   Field,
@@ -15,7 +16,6 @@ import { LookActions, ReviewedChange, useReviewedChange } from "../../components
 import { useLocale } from "../../lib/i18n";
 import { messageUnder } from "./form-message";
 import { surveyQueries } from "./queries";
-import { nextWords } from "./survey-words";
 
 /** A survey's results become the levels of its tasks: chosen, looked at with who changes verdict, then saved. */
 export function AdoptionForm({

@@ -6,6 +6,7 @@ import {
   WorkplaceChangeStrike,
   WorkplaceChangeView,
 } from "../../../shared/schemas/workplace-change";
+import { changeKindTitle } from "../../../shared/surveys/words";
 import { Button } from "../../components/button";
 import { Dialog } from "../../components/dialog";
 import {
@@ -25,7 +26,6 @@ import { api } from "../../lib/api";
 import { useChangeKey } from "../../lib/change-key";
 import { references } from "../../lib/references";
 import { workplaceChangeQueries } from "./queries";
-import { changeKindTitle } from "./survey-words";
 
 const KINDS = ["process", "machine", "control", "work-pattern"] as const;
 const SUBJECTS = ["task", "area", "job"] as const;

@@ -3,12 +3,12 @@ import { useLingui } from "@lingui/react";
 import { Link } from "react-router-dom";
 import type { Locale } from "../../../shared/i18n/index";
 import type { MeasuringNeed } from "../../../shared/schemas/survey";
+import { needWords } from "../../../shared/surveys/words";
 import { DataTable } from "../../components/data-table";
 import { Empty } from "../../components/empty";
 import { TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
 import { paths } from "../../paths";
-import { needWords } from "./survey-words";
 
 /** How a survey begins that is planned for these reasons: its purpose, and the tasks that they name. */
 function startOfSurvey(

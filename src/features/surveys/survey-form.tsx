@@ -14,6 +14,16 @@ import {
   SurveyInput,
   type SurveyPlan,
 } from "../../../shared/schemas/survey";
+import {
+  NOISE_PATTERNS,
+  noisePatternWord,
+  patternWords,
+  planReason,
+  riskFactorTitle,
+  samplesOfLength,
+  strategyNote,
+  strategyTitle,
+} from "../../../shared/surveys/words";
 import { DateField, Field, SelectField, TextAreaField, TextField } from "../../components/form";
 import { TextButton } from "../../components/link";
 import { NumberInput, type Typed } from "../../components/number-input";
@@ -24,16 +34,6 @@ import { problemText } from "../../lib/problem-text";
 import { messageUnder } from "./form-message";
 import { surveyQueries } from "./queries";
 import { Reservations } from "./reservations-field";
-import {
-  NOISE_PATTERNS,
-  noisePatternWord,
-  patternWords,
-  planReason,
-  riskFactorTitle,
-  samplesOfLength,
-  strategyNote,
-  strategyTitle,
-} from "./survey-words";
 
 type Input = z.input<typeof SurveyInput>;
 export type SurveyFormState = UseFormReturn<Input, unknown, SurveyInput>;

@@ -5,13 +5,13 @@ import { formatLevel } from "../../../shared/format/level";
 import { withoutStop } from "../../../shared/format/words";
 import { RUN_DOUBTS } from "../../../shared/schemas/run-doubts";
 import type { SurveyDetail, SurveySample, TargetResult } from "../../../shared/schemas/survey";
+import { nextWords, notCountedWords } from "../../../shared/surveys/words";
+import { doubtWord } from "../../../shared/words/run-words";
 import { DataTable } from "../../components/data-table";
 import { Empty } from "../../components/empty";
 import { TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
-import { doubtWord } from "../../lib/run-words";
 import { paths } from "../../paths";
-import { nextWords, notCountedWords } from "./survey-words";
 
 /** What is wanted against what is there, target by target, and what the standard asks for next. */
 export function ResultsTable({ survey }: { survey: SurveyDetail }) {

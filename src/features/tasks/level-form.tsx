@@ -7,6 +7,7 @@ import { formatLevel } from "../../../shared/format/level";
 import { GradeName, InstrumentClassName } from "../../../shared/schemas/evaluation";
 import { findLevelDoubts } from "../../../shared/schemas/level-doubts";
 import { TaskDetail, TaskLevelInput, type TaskLevelView } from "../../../shared/schemas/task";
+import { gradeWord, instrumentClassWord } from "../../../shared/words/register-words";
 import {
   DateField,
   Field,
@@ -26,7 +27,6 @@ import { NumberInput } from "../../components/number-input";
 import { LookActions, ReviewedChange, useReviewedChange } from "../../components/reviewed-change";
 import { SpectrumField, useSpectrumCheck } from "../../components/spectrum-field";
 import { useLocale } from "../../lib/i18n";
-import { gradeWord, instrumentClassWord } from "../../lib/register-words";
 import { IMPULSE_TYPES, impulseTypeWord } from "./impulse-words";
 import { taskQueries } from "./queries";
 import { SamplesField, useSamplesCheck } from "./samples-field";

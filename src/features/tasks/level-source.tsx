@@ -4,9 +4,8 @@ import { formatShortDate } from "../../../shared/format/date";
 import { formatLevel } from "../../../shared/format/level";
 import { withoutStop } from "../../../shared/format/words";
 import type { TaskLevelView } from "../../../shared/schemas/task";
-
+import { strategyWord } from "../../../shared/words/register-words";
 import { useLocale } from "../../lib/i18n";
-import { strategyWord } from "../../lib/register-words";
 import { paths } from "../../paths";
 import { MeasuredLink } from "./measured-link";
 

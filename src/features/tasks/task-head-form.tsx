@@ -2,10 +2,10 @@ import { useLingui } from "@lingui/react";
 import { useQueryClient } from "@tanstack/react-query";
 import type { z } from "zod";
 import { TaskDetail, TaskInput } from "../../../shared/schemas/task";
+import { gearWords } from "../../../shared/words/register-words";
 import { CheckField, type Choice, SelectField, TextField } from "../../components/form";
 import { GearField } from "../../components/gear-field";
 import { RecordForm } from "../../components/record-form";
-import { gearWords } from "../../lib/register-words";
 import { taskQueries } from "./queries";
 
 type Detail = z.infer<typeof TaskDetail>;

@@ -11,7 +11,6 @@ import { RULE_SETS } from "../../../shared/rule-sets/index";
 import type { AuditEventView, NamedThing } from "../../../shared/schemas/audit-event";
 import { FINDING_KINDS, FindingState } from "../../../shared/schemas/finding";
 import type { HistoryStretch } from "../../../shared/schemas/history";
-import { bearerWord } from "../../lib/employer-words";
 import {
   gearWord,
   gradeWord,
@@ -21,7 +20,8 @@ import {
   protectorKindWord,
   settingsWords,
   zoneWord,
-} from "../../lib/register-words";
+} from "../../../shared/words/register-words";
+import { bearerWord } from "../../lib/employer-words";
 import { roleWord } from "../../lib/role-word";
 import { fieldWord } from "./field-words";
 
