@@ -40,6 +40,7 @@ import { trailKeepers } from "./20261203140000-trail-keepers";
 import { retention } from "./20261203140100-retention";
 import { mailEvents } from "./20261203150000-mail-events";
 import { mailChoices } from "./20261203150100-mail-choices";
+import { bouncesOfOtherMails } from "./20261203150200-bounces-of-other-mails";
 
 /** In the order in which they run. */
 export const migrations = [
@@ -81,6 +82,7 @@ export const migrations = [
   trailKeepers,
   mailEvents,
   mailChoices,
+  bouncesOfOtherMails,
   retention,
   employerDuties,
   representatives,

@@ -21,7 +21,7 @@ export async function recordMailEvent(
         { messageId },
       ),
   );
-  if (!notice) return { isKnown: false, isNew: false };
+  if (!notice) return recordOtherMail(messageId, kind, status);
   const { organizationId } = notice;
   return inTransaction({ organizationId }, async () => {
     const stored = await execute(
@@ -57,5 +57,58 @@ export async function recordMailEvent(
         },
       );
     return { isKnown: true, isNew: true };
+  });
+}
+
+interface OtherMail {
+  id: string;
+  organizationId: string;
+  mail: "trail-head" | "digest" | "escalation";
+  /** Of an escalation. */
+  siteId: string | null;
+}
+
+const BOUNCED: Readonly<Record<OtherMail["mail"], string>> = {
+  "trail-head":
+    "UPDATE trail_mails SET state = 'bounced', last_error = $2 WHERE id = $1 AND state IN ('waiting', 'sent')",
+  digest:
+    "UPDATE digests SET state = 'bounced', last_error = $2 WHERE id = $1 AND state IN ('waiting', 'sent')",
+  escalation:
+    "UPDATE escalations SET bounced_at = now(), last_error = $2 WHERE id = $1 AND bounced_at IS NULL",
+};
+
+/** Of a mail that is no notice only that it came back is kept: whoever relies on it has to be told. */
+async function recordOtherMail(
+  messageId: string,
+  kind: MailHookEvent["kind"],
+  status: string | null,
+): Promise<MailHookReply> {
+  const found = await inTransaction(
+    { settings: { "app.mail_report": messageId }, readOnly: true },
+    () =>
+      row<OtherMail>(
+        `SELECT id, organization_id AS "organizationId", 'trail-head' AS mail, NULL::uuid AS "siteId" FROM trail_mails WHERE id = reported_mail()
+         UNION ALL SELECT id, organization_id, 'digest', NULL FROM digests WHERE id = reported_mail()
+         UNION ALL SELECT id, organization_id, 'escalation', site_id FROM escalations WHERE id = reported_mail()`,
+        {},
+      ),
+  );
+  if (!found) return { isKnown: false, isNew: false };
+  if (kind !== "bounced") return { isKnown: true, isNew: false };
+  const { id, organizationId, mail, siteId } = found;
+  return inTransaction({ organizationId }, async () => {
+    const changed = await execute(BOUNCED[mail], [id, status ?? "5.0.0"]);
+    // A daily mail is nobody's evidence; its row is in the trail as any other.
+    if (changed > 0 && mail !== "digest")
+      await recordAudit(
+        { organizationId },
+        {
+          action: mail === "trail-head" ? "bounce-trail-head" : "bounce-escalation",
+          subjectKind: siteId === null ? "organization" : "site",
+          subjectId: siteId ?? organizationId,
+          values: { messageId, status },
+        },
+      );
+    return { isKnown: true, isNew: changed > 0 };
   });
 }

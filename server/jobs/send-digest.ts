@@ -53,7 +53,7 @@ export async function sendDigest(
   const state = STATES[outcome.kind];
   await inTransaction({ organizationId }, () =>
     execute(
-      "UPDATE digests SET state = $2, sent_at = CASE WHEN $2 = 'sent' THEN now() END, last_error = $3 WHERE id = $1",
+      "UPDATE digests SET state = $2, sent_at = CASE WHEN $2 = 'sent' THEN now() END, last_error = $3 WHERE id = $1 AND state = 'waiting'",
       [digestId, state, outcome.kind === "sent" ? null : outcome.error],
     ),
   );

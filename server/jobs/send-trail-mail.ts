@@ -36,7 +36,8 @@ export async function sendTrailMail(
       return;
     }
     await execute(
-      "UPDATE trail_mails SET state = 'sent', sent_at = now(), last_error = NULL WHERE id = $1",
+      // It may have come back already.
+      "UPDATE trail_mails SET state = 'sent', sent_at = now(), last_error = NULL WHERE id = $1 AND state = 'waiting'",
       [mailId],
     );
     if (claimed.seal)

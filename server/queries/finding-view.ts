@@ -41,7 +41,7 @@ const selectFindings = (
     CASE WHEN f.job_id IS NULL THEN 1 ELSE (SELECT count(DISTINCT e.worker_id)::int FROM finding_evidence e WHERE e.finding_id = f.id) END AS "workersCount", f.due_on::text AS "dueOn", ${RULES_UNTIL} AS "rulesUntil", f.site_id AS "siteId", f.revision, w.id AS "workerId", w.name AS "workerName",
     w.employee_number AS "employeeNumber", coalesce(j.name, i.name) AS "subjectName",
     (SELECT c.name FROM crew_memberships m JOIN crews c ON c.id = m.crew_id WHERE m.worker_id = f.worker_id AND m.valid @> f.last_date LIMIT 1) AS "crewName",
-    o.name AS "ownerName", (SELECT json_build_object('name', p.name, 'on', f.escalated_on) FROM escalations x JOIN users p ON p.id = x.recipient_id WHERE x.id = f.escalation_id) AS "wentUp",
+    o.name AS "ownerName", (SELECT json_build_object('name', p.name, 'on', f.escalated_on, 'hasBounced', x.bounced_at IS NOT NULL) FROM escalations x JOIN users p ON p.id = x.recipient_id WHERE x.id = f.escalation_id) AS "wentUp",
     (SELECT to_jsonb(x) FROM (SELECT ${DAY_FIGURES_COLUMNS("r")} FROM day_results r WHERE r.id = f.last_result_id AND ${visible(evidencePolicy, actor, "r")}) x) AS figures
   FROM findings f LEFT JOIN workers w ON w.id = f.worker_id LEFT JOIN jobs j ON j.id = f.job_id
   LEFT JOIN instruments i ON i.id = f.instrument_id LEFT JOIN users o ON o.id = f.owner_id`;

@@ -9,5 +9,7 @@ export const DigestView = DigestInput.extend({
   revision: z.number(),
   /** Where it goes; null: this person has no address for mail. */
   email: z.string().nullable(),
+  /** The latest mail came back undeliverable: what its server said, RFC 3463; null: it did not. */
+  bounced: z.string().nullable(),
 });
 export type DigestView = z.infer<typeof DigestView>;

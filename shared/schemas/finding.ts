@@ -93,8 +93,8 @@ export const FindingRow = z.object({
   crewName: z.string().nullable(),
   figures: DayFigures.nullable(),
   ownerName: z.string().nullable(),
-  /** Overdue, it went up to a named person. */
-  wentUp: z.object({ name: z.string(), on: IsoDate }).nullable(),
+  /** Overdue, to whom it was told; that mail may have come back undeliverable. */
+  wentUp: z.object({ name: z.string(), on: IsoDate, hasBounced: z.boolean() }).nullable(),
   revision: z.number(),
   can: Can("handle", "markDone", "comment"),
 });

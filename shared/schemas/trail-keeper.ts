@@ -21,7 +21,7 @@ export const HeadMail = z.object({
   email: z.string(),
   /** The Monday of its week. */
   week: z.string(),
-  state: z.enum(["waiting", "sent", "refused"]),
+  state: z.enum(["waiting", "sent", "refused", "bounced"]),
   /** Null: not written yet. */
   seal: z.object({ number: z.number(), hash: z.string() }).nullable(),
   sentAt: z.string().nullable(),

@@ -600,6 +600,12 @@ function Told({ finding }: { finding: FindingView }) {
             name: finding.wentUp.name,
             date: formatDate(finding.wentUp.on, locale),
           })}
+          {finding.wentUp.hasBounced && (
+            <span className="field-error">
+              {" "}
+              {i18n.t("That mail came back undeliverable: tell them yourself.")}
+            </span>
+          )}
         </p>
       )}
       {look && (

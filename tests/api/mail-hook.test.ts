@@ -208,6 +208,91 @@ describe("a mail server that accepts and then bounces", () => {
   });
 });
 
+describe("a mail that is no notice comes back", () => {
+  /** The same report twice is news once. */
+  async function bounce(id: string): Promise<void> {
+    const body = bounceOf(`<${id}@dinward>`);
+    expect((await report(signed(body))).body).toEqual({ isKnown: true, isNew: true });
+    expect((await report(signed(body))).body).toEqual({ isKnown: true, isNew: false });
+  }
+  const actionsOf = async (subjectId: string) =>
+    (
+      await select<{ action: string }>(
+        "SELECT action FROM audit_events WHERE subject_id = $1 AND action LIKE 'bounce%'",
+        [subjectId],
+      )
+    ).map(({ action }) => action);
+
+  test("the trail's head: its page says so", async () => {
+    const admin = await buildUser({ roles: ["administrator"] });
+    const { organizationId } = admin;
+    await buildSite({ organizationId });
+    const id = randomUUID();
+    await insert("trail_mails", {
+      id,
+      organizationId,
+      kind: "head",
+      week: "2026-11-30",
+      name: "K. Outside",
+      email: "k@outside.example",
+      language: "en",
+      timeZone: "UTC",
+      state: "sent",
+    });
+    await bounce(id);
+    const { body } = await (await signInAs(admin)).get("/trail-keeper");
+    expect(body.mails).toMatchObject([{ id, state: "bounced", error: "5.1.1" }]);
+    expect(await actionsOf(organizationId)).toEqual(["bounce-trail-head"]);
+  });
+
+  test("a daily mail: whoever chose it sees it", async () => {
+    const site = await buildSite({});
+    const { organizationId } = site;
+    const user = await buildUser({ organizationId, roles: ["supervisor"] });
+    const id = randomUUID();
+    await insert("digests", {
+      id,
+      organizationId,
+      userId: user.id,
+      siteId: site.id,
+      date: daysFromToday(0),
+      state: "sent",
+    });
+    await bounce(id);
+    expect((await (await signInAs(user)).get("/me/digest")).body).toMatchObject({
+      bounced: "5.1.1",
+    });
+  });
+
+  test("word of what is overdue: the finding says that nobody was told", async () => {
+    const site = await buildSite({});
+    const { organizationId } = site;
+    const officer = await buildUser({ organizationId, roles: ["officer"] });
+    const worker = await buildWorker({ site });
+    const findingId = await buildFinding({
+      site,
+      workerId: worker.id,
+      kind: "over-limit-at-ear",
+    });
+    const id = randomUUID();
+    await insert("escalations", {
+      id,
+      organizationId,
+      siteId: site.id,
+      recipientId: officer.id,
+      sentAt: new Date(),
+    });
+    await select(
+      "UPDATE findings SET escalation_id = $2, escalated_on = current_date WHERE id = $1",
+      [findingId, id],
+    );
+    await bounce(id);
+    const { body } = await (await signInAs(officer)).get(`/findings/${findingId}`);
+    expect(body.wentUp).toMatchObject({ hasBounced: true });
+    expect(await actionsOf(site.id)).toEqual(["bounce-escalation"]);
+  });
+});
+
 describe("POST /hooks/mail", () => {
   test("takes what any secret of the list signed, and nothing else", async () => {
     const { state, noticeId } = await buildNotice();

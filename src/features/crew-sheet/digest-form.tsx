@@ -2,6 +2,7 @@ import { useLingui } from "@lingui/react";
 import { queryOptions, useQuery, useQueryClient } from "@tanstack/react-query";
 import { useState } from "react";
 import { z } from "zod";
+import { isolate } from "../../../shared/i18n/isolate";
 import { type DigestInput, DigestView } from "../../../shared/schemas/digest";
 import { Failed } from "../../components/failed";
 import {
@@ -42,6 +43,14 @@ export function DigestForm() {
     return <p>{i18n.t("You have no mail address here. An administrator can enter one.")}</p>;
   return (
     <>
+      {data.bounced !== null && (
+        <p className="field-error">
+          {i18n.t(
+            "The latest one to {email} came back undeliverable ({reason}). Whoever administers can put the address right.",
+            { email: isolate(data.email), reason: data.bounced },
+          )}
+        </p>
+      )}
       <ChooseHour key={data.revision} digest={data} onSaid={setSaid} />
       <p className="status" role="status">
         {said}

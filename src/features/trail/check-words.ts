@@ -51,5 +51,7 @@ export function headMailWord(i18n: I18n, state: HeadMail["state"]): string {
       return i18n.t("sent");
     case "refused":
       return i18n.t("refused by the mail server");
+    case "bounced":
+      return i18n.t("came back undeliverable");
   }
 }

@@ -416,6 +416,8 @@ export function actionWord(i18n: I18n, action: string): string {
     case "send-notice":
       return i18n.t("Sent");
     case "bounce-notice":
+    case "bounce-trail-head":
+    case "bounce-escalation":
       return i18n.t("Came back undeliverable");
     case "send-again-notice":
       return i18n.t("Sent again");
