@@ -12,6 +12,7 @@ import {
   buildWorker,
   type Client,
   daysFromToday,
+  daysFromTodayAtSite,
   insert,
   nobody,
   type Site,
@@ -406,7 +407,7 @@ describeEndpoint({
     return {
       method: "post",
       path: `/letters/${letter.id}/acknowledgement`,
-      body: { signedOn: daysFromToday(0) },
+      body: { signedOn: daysFromTodayAtSite(0) },
     };
   },
   bad: { body: { signedOn: "yesterday" } },

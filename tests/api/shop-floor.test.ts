@@ -12,6 +12,7 @@ import {
   buildUser,
   buildWorker,
   daysFromToday,
+  daysFromTodayAtSite,
   insert,
   owner,
   type Site,
@@ -518,7 +519,7 @@ describe("what a worker says anew of the same day and task", () => {
         note: "it was the hot day",
         isByWorker: true,
         canChange: true,
-        changeableUntil: daysFromToday(14),
+        changeableUntil: daysFromTodayAtSite(14),
       }),
     );
     const officer = await signInAs(

@@ -1,5 +1,5 @@
 export { buildDay } from "./day";
-export { daysFromToday } from "./days";
+export { daysFromToday, daysFromTodayAtSite } from "./days";
 export { buildFile, buildFinding } from "./finding";
 export { buildFitTest, buildIssue } from "./fit";
 export { insert, owner, select } from "./insert";

@@ -1,3 +1,4 @@
+import { SITE_TIME_ZONE } from "./days";
 import { insert, next } from "./insert";
 import { buildOrganization } from "./organization";
 
@@ -24,7 +25,7 @@ interface SiteOverrides {
 export async function buildSite(overrides: SiteOverrides = {}): Promise<Site> {
   const organizationId = overrides.organizationId ?? (await buildOrganization()).id;
   const name = overrides.name ?? `Site ${next()}`;
-  const { timeZone = "Europe/Berlin", noticeDelayMin = 15 } = overrides;
+  const { timeZone = SITE_TIME_ZONE, noticeDelayMin = 15 } = overrides;
   const id = await insert("sites", { organizationId, name, timeZone, noticeDelayMin });
   await insert("site_settings", {
     organizationId,
