@@ -10,6 +10,7 @@ import { type Mailer, retryUnlessSettled } from "../lib/mailer";
 import { type Actor, visible } from "../lib/policy";
 import { Crew } from "../models/worker";
 import { chargePolicy } from "../policies";
+import { stillAsked } from "../queries/crew-orders";
 import { crewSheet } from "../queries/crew-sheet";
 import { nextShiftDate } from "../queries/next-shift";
 
@@ -130,10 +131,8 @@ async function crewsOf({
       ),
       orders: expected.rows
         .filter(isHere)
-        .flatMap(({ worker, order, ahead }) =>
-          [ahead, order?.state === "done" ? null : order].flatMap((one) =>
-            one ? [{ name: worker.name, kind: one.kind, facts: one.facts }] : [],
-          ),
+        .flatMap((one) =>
+          stillAsked(one).map(({ kind, facts }) => ({ name: one.worker.name, kind, facts })),
         ),
       handOverBy: handOver?.byName ?? null,
     });

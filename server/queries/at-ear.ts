@@ -5,7 +5,6 @@ import { everyMethod } from "../../shared/acoustics/protection/every-method";
 import { mostAudioDb } from "../../shared/acoustics/protection/most-audio";
 import type {
   BandAttenuation,
-  Criterion,
   DayInput,
   Protection,
   ProtectorData,
@@ -14,7 +13,7 @@ import type {
   TimedTask,
   Zone,
 } from "../../shared/acoustics/types";
-import { levelOf, mainLimit } from "../../shared/rule-sets";
+import { type LimitAtEar, limitAtEar } from "../../shared/rule-sets";
 import type { AtEarView, NominalDayAtEar } from "../../shared/schemas/at-ear";
 import { todayAt } from "../lib/calendar";
 import { rows } from "../lib/db";
@@ -160,30 +159,10 @@ export async function atEar({ task, inner, outer, worker }: Asked): Promise<AtEa
   };
 }
 
-interface Limit {
-  levelDb: number;
-  comparator: Criterion["comparator"];
-  kind: "limit" | "target";
-}
-
-/** The rule's own limit at the ear, else what a protector has to bring the day down to. */
-function limitAtEar(ruleSet: RuleSetVersion, personalTargetDb: number | null): Limit | null {
-  const limit = mainLimit(ruleSet);
-  if (limit.judged === "at-the-ear")
-    return { levelDb: levelOf(limit), comparator: limit.comparator, kind: "limit" };
-  const { targetDb } = ruleSet.protection;
-  if (targetDb === null) return null;
-  return {
-    levelDb: Math.min(targetDb, personalTargetDb ?? targetDb),
-    comparator: "exceeds",
-    kind: "target",
-  };
-}
-
 function nominalDay(
   day: DayInput,
   ruleSet: RuleSetVersion,
-  limit: Limit | null,
+  limit: LimitAtEar | null,
 ): Omit<NominalDayAtEar, "jobId" | "jobName"> {
   const { tasks, lengthMin } = only([...day.shifts]);
   const wornMin = tasks.reduce(

@@ -155,3 +155,9 @@ async function outlooksOf(
     }),
   );
 }
+
+/** What a row still asks for: the day to come, and the order of an open finding that nobody has marked as done. */
+export const stillAsked = ({ order, ahead }: CrewSheetRow) => [
+  ...(ahead ? [{ ...ahead, findingId: null }] : []),
+  ...(order && order.state !== "done" ? [order] : []),
+];

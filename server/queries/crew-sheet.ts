@@ -1,5 +1,6 @@
 import type { z } from "zod";
 import type { ExpectedDay } from "../../shared/findings/expected";
+import { isAsked } from "../../shared/findings/orders";
 import { formatTime } from "../../shared/format/date";
 import type { CrewSheetRow, CrewSheetView } from "../../shared/schemas/crew";
 import { todayAt } from "../lib/calendar";
@@ -102,8 +103,6 @@ export async function crewSheet(actor: Actor, crew: Crew): Promise<z.input<typeo
     handOver: await waitingHandOver(actor, crew.id),
   };
 }
-
-const isAsked = ({ order, ahead }: CrewSheetRow): boolean => order !== null || ahead !== null;
 
 /** By the clock of the site; one that runs past midnight is over on the next date only. */
 function isShiftOver({ usualStart, usualLengthMin }: Crew, timeZone: string): boolean {

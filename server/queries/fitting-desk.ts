@@ -4,7 +4,7 @@ import {
   ProtectorChoice,
   type WornGear,
 } from "../../shared/acoustics/protection/choose-protector";
-import { hasToPass } from "../../shared/acoustics/protection/fit-rating";
+import { passesNeed } from "../../shared/acoustics/protection/fit-rating";
 import { noisesOf, wornMinOf } from "../../shared/acoustics/protection/noises";
 import type { DayInput } from "../../shared/acoustics/types";
 import { besideScaleDb } from "../../shared/rule-sets";
@@ -128,9 +128,7 @@ async function candidates(
 
 /** A fit of which no need was known when it was tested is held against the one at the desk's head, dB. */
 const judgedByNeed = (fit: OwnFit, needDb: number | null): OwnFit =>
-  fit.needDb !== null
-    ? fit
-    : { ...fit, needDb, hasPassed: hasToPass(needDb) ? fit.parDb >= needDb : null };
+  fit.needDb !== null ? fit : { ...fit, needDb, hasPassed: passesNeed(fit.parDb, needDb) };
 
 function issuedTo(actor: Actor, workerId: string): Promise<FittingDesk["issued"]> {
   return rows<FittingDesk["issued"][number]>(

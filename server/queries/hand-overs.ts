@@ -14,6 +14,7 @@ import { only } from "../lib/only";
 import { type Actor, visible } from "../lib/policy";
 import type { Crew } from "../models/worker";
 import { handOverPolicy } from "../policies";
+import { stillAsked } from "./crew-orders";
 import { crewSheet } from "./crew-sheet";
 
 /** How far ahead somebody's time with a crew may begin for them to be its next supervisor. */
@@ -23,10 +24,14 @@ const SOON_DAYS = 14;
 export async function handOverDraft(actor: Actor, crew: Crew): Promise<HandOverDraft> {
   const sheet = await crewSheet(actor, crew);
   const { date, rows: expected } = sheet.expected;
-  const open = expected.flatMap(({ worker, order, ahead }) => [
-    ...(ahead ? [{ worker, findingId: null, ...ahead }] : []),
-    ...(order && order.state !== "done" ? [{ worker, ...order }] : []),
-  ]);
+  const open = expected.flatMap((one) =>
+    stillAsked(one).map(({ findingId, kind, facts }) => ({
+      workerName: one.worker.name,
+      findingId,
+      kind,
+      facts,
+    })),
+  );
   const cannots = await lastCannots(open.flatMap(({ findingId }) => findingId ?? []));
   const ends = await absencesUntil(
     expected.filter(({ isAbsent }) => isAbsent).map(({ worker }) => worker.id),
@@ -34,12 +39,9 @@ export async function handOverDraft(actor: Actor, crew: Crew): Promise<HandOverD
   );
   const content: HandOverContent = {
     sheetDate: date,
-    orders: open.map(({ worker, findingId, kind, facts }) => ({
-      findingId,
-      workerName: worker.name,
-      kind,
-      facts,
-      cannot: (findingId === null ? null : cannots.get(findingId)) ?? null,
+    orders: open.map((one) => ({
+      ...one,
+      cannot: (one.findingId === null ? null : cannots.get(one.findingId)) ?? null,
     })),
     absent: expected
       .filter(({ isAbsent }) => isAbsent)

@@ -1,4 +1,5 @@
 import { expect, test } from "vitest";
+import { buildLevel, buildTask, dayOf, STEADY } from "../../tests/published/build-day";
 import type { DayInput, Protection, TimedTask } from "../acoustics/types";
 import { ruleSetVersion } from "../rule-sets";
 import { longestStay } from "./longest-stay";
@@ -14,28 +15,13 @@ interface Part {
   wornPct?: number | null;
 }
 
-const timed = ({ id, levelDb, minutes, protection, wornPct = 100 }: Part): TimedTask => ({
-  id,
-  taskId: id,
-  name: id,
-  durationMin: minutes,
-  level: {
-    revisionId: null,
-    metric: { kind: "steady" },
-    levelDb,
-    lcMinusLaDb: 0,
-    octaveBandsDb: null,
-    lasMaxDb: null,
-    peak: null,
-    samplesDb: [],
-    instrument: null,
-    grade: "measured-group",
-  },
-  zone: "none",
-  protection: protection ?? null,
-  wornPct: protection ? wornPct : null,
-  wornIsShiftWide: false,
-});
+const timed = ({ id, levelDb, minutes, protection, wornPct = 100 }: Part): TimedTask =>
+  buildTask(
+    id,
+    minutes,
+    buildLevel(levelDb, { metric: STEADY, lcMinusLaDb: 0, grade: "measured-group" }),
+    { protection: protection ?? null, wornPct: protection ? wornPct : null },
+  );
 
 /** A day of these parts, in which the first lasts as long as it is asked for. */
 const day =
@@ -44,23 +30,7 @@ const day =
     const tasks = parts
       .map((part, index) => timed(index === 0 ? { ...part, minutes } : part))
       .filter(({ durationMin }) => durationMin > 0);
-    return {
-      workerId: "w",
-      date: "2026-03-02",
-      mustWear: false,
-      personalTargetDb: null,
-      site: { wearFromDb: 85, creditsActivePart: false, usesUncertainty: false },
-      shifts: [
-        {
-          id: "s",
-          revisionId: null,
-          lengthMin: tasks.reduce((sum, { durationMin }) => sum + durationMin, 0),
-          tasks,
-          unaccounted: { how: "unknown" },
-          readings: [],
-        },
-      ],
-    };
+    return dayOf(...tasks);
   };
 
 const plug = (ownFitDb: number | null): Protection => ({

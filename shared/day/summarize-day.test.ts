@@ -1,4 +1,11 @@
 import { expect, test } from "vitest";
+import {
+  buildLevel,
+  buildProtection,
+  buildTask,
+  dayOf as dayOfTasks,
+  settings,
+} from "../../tests/published/build-day";
 import { evaluateDay } from "../acoustics/day";
 import type { DayInput, LevelMetric } from "../acoustics/types";
 import { ruleSetInForce } from "../rule-sets";
@@ -7,79 +14,18 @@ import { summarizeDay } from "./summarize-day";
 const governing = ruleSetInForce("us-general-industry", "2026-03-02")!;
 
 /** Eight hours of one task at 98 dB under a plug whose label says 29. */
-const dayOf = (metric: LevelMetric): DayInput => ({
-  workerId: "w",
-  date: "2026-03-02",
-  mustWear: false,
-  personalTargetDb: null,
-  site: { wearFromDb: 85, creditsActivePart: false, usesUncertainty: false },
-  shifts: [
-    {
-      id: "s",
-      revisionId: null,
-      lengthMin: 480,
-      unaccounted: { how: "unknown" },
-      readings: [],
-      tasks: [
-        {
-          id: "t",
-          taskId: "t",
-          name: "Hammering",
-          durationMin: 480,
-          zone: "none",
-          wornPct: 100,
-          wornIsShiftWide: false,
-          level: {
-            revisionId: null,
-            metric,
-            levelDb: 98,
-            lcMinusLaDb: null,
-            octaveBandsDb: null,
-            lasMaxDb: null,
-            peak: null,
-            samplesDb: [],
-            instrument: null,
-            grade: "task-level",
-          },
-          protection: {
-            assignmentId: null,
-            inner: {
-              modelId: "m",
-              revisionId: null,
-              name: "Plug",
-              kind: "foam-plug",
-              usRatingDb: 29,
-              snrDb: null,
-              hDb: null,
-              mDb: null,
-              lDb: null,
-              slc80Db: null,
-              bands: null,
-              active: null,
-            },
-            outer: null,
-            combinationBands: null,
-            ownFitDb: null,
-            activeCheckPassed: false,
-          },
-        },
-      ],
-    },
-  ],
-});
+const dayOf = (metric: LevelMetric): DayInput =>
+  dayOfTasks(
+    buildTask("Hammering", 480, buildLevel(98, { metric }), {
+      protection: buildProtection({ kind: "foam-plug", name: "Plug", usRatingDb: 29 }),
+      wornPct: 100,
+    }),
+  );
 
 const summaryOf = (metric: LevelMetric) => {
   const input = dayOf(metric);
   return summarizeDay(input, evaluateDay(input, governing, []), governing);
 };
-
-const settings = (thresholdDb: number) => ({
-  criterionLevelDb: 90,
-  exchangeRateDb: 5,
-  thresholdDb,
-  weighting: "A" as const,
-  response: "slow" as const,
-});
 
 test("a steady level under a label is what it is while worn", () => {
   // 29 CFR 1910.95 App. B: 98 − (29 − 7).
@@ -90,7 +36,7 @@ test("a steady level under a label is what it is while worn", () => {
 });
 
 test("an average with a threshold only bounds the level while worn, on the side on which the day stands", () => {
-  const summary = summaryOf({ kind: "lavg", settings: settings(90) });
+  const summary = summaryOf({ kind: "lavg", settings: settings(5, 90) });
   // By hand: what lay under the threshold of 90 dB adds at most the weight of 90 dB all the time,
   // 90 + 5·log2(2^((98 − 90)/5) + 1) = 100.056; less 22.
   expect(summary.whileWornDb).toBeCloseTo(90 + 5 * Math.log2(2 ** 1.6 + 1) - 22, 9);

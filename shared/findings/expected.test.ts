@@ -1,8 +1,15 @@
 import { setupI18n } from "@lingui/core";
 import { compileMessage } from "@lingui/message-utils/compileMessage";
 import { describe, expect, test } from "vitest";
+import {
+  buildLevel,
+  buildProtection,
+  buildProtector,
+  buildTask,
+  dayOf,
+  STEADY,
+} from "../../tests/published/build-day";
 import { evaluateDay } from "../acoustics/day";
-import type { DayInput, ProtectorData, TimedTask } from "../acoustics/types";
 import { ruleSetVersion } from "../rule-sets";
 import { type ExpectedDay, factsAhead, faultsAhead, isSettled, orderAhead } from "./expected";
 import { proposeRemedy } from "./remedy";
@@ -13,69 +20,23 @@ const US = ruleSetVersion("us-general-industry", 1)!;
 
 const i18n = setupI18n({ locale: "en", messages: { en: {} } }).setMessagesCompiler(compileMessage);
 
-const muff: ProtectorData = {
+/** Leaves 20 dB less by British practice. */
+const muff = buildProtector({
   modelId: "muff",
-  revisionId: null,
   name: "Muff",
-  kind: "earmuff",
   usRatingDb: 31,
   snrDb: 24,
   hDb: 24,
   mDb: 24,
   lDb: 24,
-  slc80Db: null,
-  bands: null,
-  active: null,
-};
+});
 
-/** Eight hours at a level under a muff that leaves 20 dB less by British practice, worn for a share of it. */
+/** Eight hours at a level under the muff, worn for a share of it. */
 function day(levelDb: number, wornPct: number, governing = UK): ExpectedDay {
-  const task: TimedTask = {
-    id: "timed",
-    taskId: "task",
-    name: "Run-up",
-    durationMin: 480,
-    level: {
-      revisionId: null,
-      metric: { kind: "steady" },
-      levelDb,
-      lcMinusLaDb: 0,
-      octaveBandsDb: null,
-      lasMaxDb: null,
-      peak: null,
-      samplesDb: [],
-      instrument: null,
-      grade: "task-level",
-    },
-    zone: "none",
-    protection: {
-      assignmentId: null,
-      inner: muff,
-      outer: null,
-      combinationBands: null,
-      ownFitDb: null,
-      activeCheckPassed: false,
-    },
-    wornPct,
-    wornIsShiftWide: false,
-  };
-  const input: DayInput = {
-    workerId: "worker",
-    date: "2026-12-03",
-    shifts: [
-      {
-        id: "shift",
-        revisionId: null,
-        lengthMin: 480,
-        tasks: [task],
-        unaccounted: { how: "unknown" },
-        readings: [],
-      },
-    ],
-    site: { wearFromDb: 85, creditsActivePart: false, usesUncertainty: false },
-    personalTargetDb: null,
-    mustWear: false,
-  };
+  const level = buildLevel(levelDb, { metric: STEADY, lcMinusLaDb: 0 });
+  const protection = buildProtection(muff);
+  const task = buildTask("Run-up", 480, level, { protection, wornPct });
+  const input = dayOf(task);
   return { input, governing, evaluation: evaluateDay(input, governing, []) };
 }
 

@@ -1,5 +1,6 @@
 import { judgedAtEar } from "../acoustics/protection/judged-at-ear";
 import type { DayEvaluation, DayInput, RuleSetVersion } from "../acoustics/types";
+import { limitAtEar } from "../rule-sets";
 import type { FindingKind } from "../schemas/finding";
 import { findCauses } from "./causes";
 import { type FindingFacts, leftOf } from "./facts";
@@ -32,31 +33,16 @@ export function faultsAhead({ input, evaluation, governing }: ExpectedDay): Ahea
   const causes = findCauses(input, evaluation, governing).filter(
     ({ concerns }) => concerns === "worker",
   );
-  const limitDb = limitAtEarDb(input, governing);
+  const limit = limitAtEar(governing, input.personalTargetDb);
   const atEarDb = atEarDbOf(evaluation);
-  const isOverByWearing = limitDb !== null && atEarDb !== null && atEarDb > limitDb;
+  // Where the rule has a limit at the ear, being over it is a fault of its own.
+  const isOverByWearing = limit?.kind === "target" && atEarDb !== null && atEarDb > limit.levelDb;
   return causes
     .filter(
       ({ kind }) => FAULT_KINDS.has(kind) || (kind === "not-worn-long-enough" && isOverByWearing),
     )
     .map(({ kind, facts }) => ({ kind, facts: { ...facts, isExpected: true } }))
     .toSorted((a, b) => ORDER_KINDS.indexOf(a.kind) - ORDER_KINDS.indexOf(b.kind));
-}
-
-/** Where the rule has no limit at the ear, what its protectors have to bring the shift down to. */
-function limitAtEarDb(
-  { personalTargetDb }: DayInput,
-  { criteria, protection }: RuleSetVersion,
-): number | null {
-  const hasLimit = criteria.some(
-    ({ kind, judged, quantity }) =>
-      kind === "limit" &&
-      judged === "at-the-ear" &&
-      quantity !== "peak" &&
-      quantity !== "slow-maximum",
-  );
-  if (hasLimit || protection.targetDb === null) return null;
-  return Math.min(protection.targetDb, personalTargetDb ?? protection.targetDb);
 }
 
 /**

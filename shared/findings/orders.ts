@@ -22,6 +22,16 @@ export const WORN_KINDS: ReadonlySet<FindingKind> = new Set([
   "protects-too-much",
 ]);
 
+/** Whether a row of the crew sheet has something to be done, or done already: by a finding, or by the day to come. */
+export const isAsked = ({
+  order,
+  ahead,
+}: {
+  readonly order: unknown;
+  /** Not there in what a device kept of an older sheet. */
+  readonly ahead?: unknown;
+}): boolean => Boolean(order) || Boolean(ahead);
+
 interface Ordering {
   readonly kind: FindingKind;
   readonly state: FindingState;

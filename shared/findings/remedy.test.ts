@@ -1,4 +1,11 @@
 import { expect, test } from "vitest";
+import {
+  buildLevel,
+  buildProtection,
+  buildTask,
+  dayOf,
+  STEADY,
+} from "../../tests/published/build-day";
 import type {
   DayInput,
   ProtectorData,
@@ -38,66 +45,27 @@ const heavy = device("Heavy muff", "earmuff", 34);
 const middle = device("Middle muff", "earmuff", 24);
 const band = device("Light band", "banded-plug", 14);
 
-const level = (levelDb: number): TaskLevel => ({
-  revisionId: null,
-  metric: { kind: "steady" },
-  levelDb,
-  lcMinusLaDb: 0,
-  octaveBandsDb: null,
-  lasMaxDb: null,
-  peak: null,
-  samplesDb: [],
-  instrument: null,
-  grade: "task-level",
-});
+const level = (levelDb: number): TaskLevel =>
+  buildLevel(levelDb, { metric: STEADY, lcMinusLaDb: 0 });
 
 const task = (
   name: string,
   durationMin: number,
   levelDb: number,
   more: Partial<TimedTask> = {},
-): TimedTask => ({
-  id: `timed ${name}`,
-  taskId: `task ${name}`,
-  name,
-  durationMin,
-  level: level(levelDb),
-  zone: "none",
-  protection: null,
-  wornPct: null,
-  wornIsShiftWide: false,
-  ...more,
-});
+): TimedTask =>
+  buildTask(name, durationMin, level(levelDb), {
+    id: `timed ${name}`,
+    taskId: `task ${name}`,
+    ...more,
+  });
 
 const wears = (inner: ProtectorData, wornPct = 100): Partial<TimedTask> => ({
-  protection: {
-    assignmentId: null,
-    inner,
-    outer: null,
-    combinationBands: null,
-    ownFitDb: null,
-    activeCheckPassed: false,
-  },
+  protection: buildProtection(inner),
   wornPct,
 });
 
-const day = (...tasks: TimedTask[]): DayInput => ({
-  workerId: "worker",
-  date: "2026-11-30",
-  shifts: [
-    {
-      id: "shift",
-      revisionId: null,
-      lengthMin: tasks.reduce((sum, { durationMin }) => sum + durationMin, 0),
-      tasks,
-      unaccounted: { how: "unknown" },
-      readings: [],
-    },
-  ],
-  site: { wearFromDb: 85, creditsActivePart: false, usesUncertainty: false },
-  personalTargetDb: null,
-  mustWear: false,
-});
+const day = (...tasks: TimedTask[]): DayInput => ({ ...dayOf(...tasks), date: "2026-11-30" });
 
 test("one protector for the whole day comes before any two", () => {
   // 100 − 20 = 80 and 96 − 20 = 76: the band's good part, 75 to 80, holds both.

@@ -1,5 +1,6 @@
 import { expect, test } from "vitest";
-import type { LevelMetric, TaskLevel } from "../acoustics/types";
+import { buildLevel, STEADY } from "../../tests/published/build-day";
+import type { TaskLevel } from "../acoustics/types";
 import { mainLimit, ruleSetInForce } from "../rule-sets";
 import { dayOf, type Placed, slotShare, timetableGoals } from "./slot-shares";
 
@@ -7,18 +8,7 @@ const date = "2026-03-02";
 const us = ruleSetInForce("us-general-industry", date)!;
 const uk = ruleSetInForce("uk-2005", date)!;
 
-const level = (levelDb: number, metric: LevelMetric = { kind: "steady" }): TaskLevel => ({
-  revisionId: null,
-  metric,
-  levelDb,
-  lcMinusLaDb: null,
-  octaveBandsDb: null,
-  lasMaxDb: null,
-  peak: null,
-  samplesDb: [],
-  instrument: null,
-  grade: "task-level",
-});
+const level = (levelDb: number, metric = STEADY): TaskLevel => buildLevel(levelDb, { metric });
 
 const person: Placed = {
   id: "ash",

@@ -1,4 +1,5 @@
 import { describe, expect, test } from "vitest";
+import { buildLevel } from "../../tests/published/build-day";
 import type { OctaveBandValues, TaskLevel } from "../acoustics/types";
 import { ruleSetVersion } from "../rule-sets";
 import type { PlanChange } from "../schemas/plan";
@@ -16,19 +17,8 @@ const uk = ruleSetVersion("uk-2005", 1)!;
 /** Without an allowance off the label. */
 const eu = ruleSetVersion("eu-2003-10-ec", 1)!;
 
-const level = (levelDb: number, fields: Partial<TaskLevel> = {}): TaskLevel => ({
-  revisionId: null,
-  metric: { kind: "laeq" },
-  levelDb,
-  lcMinusLaDb: 0,
-  octaveBandsDb: null,
-  lasMaxDb: null,
-  peak: null,
-  samplesDb: [],
-  instrument: null,
-  grade: "task-level",
-  ...fields,
-});
+const level = (levelDb: number, fields: Partial<TaskLevel> = {}): TaskLevel =>
+  buildLevel(levelDb, { lcMinusLaDb: 0, ...fields });
 
 const task = (id: string, of: TaskLevel) => ({
   id,

@@ -56,6 +56,30 @@ export function mainLimit(ruleSet: RuleSetVersion): Criterion {
 /** A criterion as an 8-hour level, dB. */
 export const levelOf = (criterion: Criterion): number => criterion.levelDb ?? criterion.value;
 
+export interface LimitAtEar {
+  /** As an 8-hour level, dB. */
+  readonly levelDb: number;
+  readonly comparator: Criterion["comparator"];
+  readonly kind: "limit" | "target";
+}
+
+/** The rule's own limit at the ear, else what a protector has to bring the day down to; null: it states neither. */
+export function limitAtEar(
+  ruleSet: RuleSetVersion,
+  personalTargetDb: number | null,
+): LimitAtEar | null {
+  const limit = mainLimit(ruleSet);
+  if (limit.judged === "at-the-ear")
+    return { levelDb: levelOf(limit), comparator: limit.comparator, kind: "limit" };
+  const { targetDb } = ruleSet.protection;
+  if (targetDb === null) return null;
+  return {
+    levelDb: Math.min(targetDb, personalTargetDb ?? targetDb),
+    comparator: "exceeds",
+    kind: "target",
+  };
+}
+
 /**
  * Where a rule has no scale for a protector that takes too much: the value from which EN 458's words stand beside its
  * own, dB: its action value, else its target. Null where the rule has that scale, or no word for a protector at all.

@@ -75,7 +75,7 @@ export function fitRating(trials: FitTrials): FitOutcome {
   const isLeftWeaker = right === null || (left !== null && left.parDb <= right.parDb);
   const parDb = Math.min(...ears.map((ear) => ear.parDb));
   const { confidencePct } = trials;
-  const needDb = hasToPass(trials.needDb) ? trials.needDb : null;
+  const hasPassed = passesNeed(parDb, trials.needDb);
   return {
     rating: {
       left,
@@ -85,8 +85,8 @@ export function fitRating(trials: FitTrials): FitOutcome {
       confidencePct,
       isOneEar: ears.length === 1,
       hasSingleTrial: ears.some(({ betweenTrialsDb }) => betweenTrialsDb === null),
-      hasPassed: needDb === null ? null : parDb >= needDb,
-      marginDb: needDb === null ? null : parDb - needDb,
+      hasPassed,
+      marginDb: hasToPass(trials.needDb) ? parDb - trials.needDb : null,
     },
     refusal: null,
   };
@@ -94,6 +94,10 @@ export function fitRating(trials: FitTrials): FitOutcome {
 
 /** Where nothing has to come off, any fit would do: that is no passing. */
 export const hasToPass = (needDb: number | null): needDb is number => needDb !== null && needDb > 0;
+
+/** Null: no need is known, or nothing has to come off. Both in dB. */
+export const passesNeed = (parDb: number, needDb: number | null): boolean | null =>
+  hasToPass(needDb) ? parDb >= needDb : null;
 
 function refused(
   code: FitRefusal["code"],

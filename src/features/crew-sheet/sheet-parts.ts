@@ -1,5 +1,6 @@
 import type { I18n } from "@lingui/core";
 import type { Verdict } from "../../../shared/acoustics/types";
+import { isAsked } from "../../../shared/findings/orders";
 import { formatDay } from "../../../shared/format/date";
 import { startsSentence } from "../../../shared/format/words";
 import type { Locale } from "../../../shared/i18n/index";
@@ -72,9 +73,6 @@ export const asksAboutDay = ({ order }: CrewSheetRow): boolean =>
 
 export const isOpenOrder = ({ order, ahead }: CrewSheetRow): boolean =>
   Boolean(ahead) || (order !== null && order.state !== "done");
-
-/** Somebody has to do something about it, or has done it. */
-const isAsked = ({ order, ahead }: CrewSheetRow): boolean => Boolean(ahead) || order !== null;
 
 /**
  * What a row of the sheet for the shift to come is headed by: the fault that its day has, or else, where the order is of
