@@ -260,6 +260,9 @@ const roleWords = {
   worker: "Worker",
   auditor: "Auditor",
   administrator: "Administrator",
+  representative: "Workers’ representative",
+  employer: "Outside employer",
+  visitor: "Visitor",
 };
 
 async function printWelcome({ publicUrl, ports }) {

@@ -61,6 +61,9 @@ const texts = {
       worker: "Worker",
       auditor: "Auditor",
       administrator: "Administrator",
+      representative: "Workers’ representative",
+      employer: "Outside employer",
+      visitor: "Visitor",
     },
   },
   de: {
@@ -89,6 +92,9 @@ const texts = {
       worker: "Beschäftigte/r",
       auditor: "Prüfer/in",
       administrator: "Administrator/in",
+      representative: "Beschäftigtenvertretung",
+      employer: "Fremdarbeitgeber",
+      visitor: "Besucher/in",
     },
   },
 };

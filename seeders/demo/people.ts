@@ -229,7 +229,13 @@ export interface DemoPerson {
   note: string;
   /** No e-mail at Dinward: a printed code binds the sign-in to the employee number. */
   bindsByCode?: boolean;
+  /** Reads for a while by a grant of few things, from the day of filling on. */
+  guest?: DemoGuest;
 }
+
+export type DemoGuest =
+  | { as: "employer"; site: SiteKey; employer: string; days: number }
+  | { as: "visitor"; site: SiteKey; days: number };
 
 const person = (
   sub: string,
@@ -347,6 +353,14 @@ export const PEOPLE: readonly DemoPerson[] = [
   person("w.sundqvist", "W. Sundqvist-Roe", OSTMERE, [], {
     groups: ["Noise readers"],
     note: "Granted nothing by hand: an auditor of Ostmere works by a group",
+  }),
+  person("r.quennell", "R. Quennell", "tideway.example", [], {
+    guest: { as: "employer", site: "ostmere", employer: "agency:Tideway Staffing", days: 180 },
+    note: "Of the agency Tideway Staffing: results of its people at Ostmere works",
+  }),
+  person("j.threlkeld", "J. Threlkeld-Amos", "inspectorate.example", [], {
+    guest: { as: "visitor", site: "ostmere", days: 14 },
+    note: "Visitor: the year file of Ostmere works, for a fortnight",
   }),
   person("n.okwuosa", "N. Okwuosa", "post.example", [], {
     worker: "3352",

@@ -117,7 +117,6 @@ export async function markSent(demo: Demo, by: Date, publicUrl: string): Promise
       { by: by.toISOString() },
     );
     for (const { id, createdAt, delayMin, recipientId, kinds } of due) {
-      const mail = await noticeMail(id, publicUrl);
       const isFor = (trouble: { sub: string; kind: string }) =>
         known(demo.actors, trouble.sub).userId === recipientId && kinds.includes(trouble.kind);
       const isFailed = isFor(TROUBLED.failed);
@@ -128,25 +127,42 @@ export async function markSent(demo: Demo, by: Date, publicUrl: string): Promise
       const attempted = new Date(
         notBefore.getTime() + (isLate ? TROUBLED.late.byMin * MINUTE_MS : 2_000),
       );
-      await execute(
-        `UPDATE notices SET state = $2, not_before = $3, attempted_at = $4, sent_at = CASE WHEN $2 = 'sent' THEN $4::timestamptz END, tries = 1,
-           last_error = $5, subject = $6, body_text = $7, body_html = $8, revision = revision + 2 WHERE id = $1`,
-        [
-          id,
-          isFailed ? "failed" : "sent",
-          notBefore.toISOString(),
-          attempted.toISOString(),
-          isFailed ? TROUBLED.failed.error : null,
-          mail.subject,
-          mail.text,
-          mail.html,
-        ],
-      );
-      await rows("SELECT graphile_worker.remove_job(:key) IS NULL AS gone", {
-        key: `notice:${id}`,
+      await storeAttempt(id, {
+        notBefore,
+        attempted,
+        error: isFailed ? TROUBLED.failed.error : null,
+        publicUrl,
       });
     }
   });
+}
+
+/** How a notice stands after its one attempt, in the words it has now; its job is done. */
+export async function storeAttempt(
+  id: string,
+  {
+    notBefore,
+    attempted,
+    error,
+    publicUrl,
+  }: { notBefore: Date; attempted: Date; error: string | null; publicUrl: string },
+): Promise<void> {
+  const mail = await noticeMail(id, publicUrl);
+  await execute(
+    `UPDATE notices SET state = $2, not_before = $3, attempted_at = $4, sent_at = CASE WHEN $2 = 'sent' THEN $4::timestamptz END, tries = 1,
+       last_error = $5, subject = $6, body_text = $7, body_html = $8, revision = revision + 2 WHERE id = $1`,
+    [
+      id,
+      error === null ? "sent" : "failed",
+      notBefore.toISOString(),
+      attempted.toISOString(),
+      error,
+      mail.subject,
+      mail.text,
+      mail.html,
+    ],
+  );
+  await rows("SELECT graphile_worker.remove_job(:key) IS NULL AS gone", { key: `notice:${id}` });
 }
 
 /** An attempt of which nobody knows how it ended, and its one repetition. */

@@ -7,14 +7,26 @@ import { known } from "./programme";
 /** What the local sign-in provider reads: who can be chosen on its page. */
 export function writePeopleFile(demo: Demo, folder: string): string {
   const people = PEOPLE.map(
-    ({ sub, name, email, emailVerified, language, grants, groups, worker, bindsByCode, note }) => ({
+    ({
+      sub,
+      name,
+      email,
+      emailVerified,
+      language,
+      grants,
+      groups,
+      worker,
+      bindsByCode,
+      guest,
+      note,
+    }) => ({
       sub,
       name,
       email,
       emailVerified,
       language,
       groups,
-      roles: [...new Set(grants.map(({ role }) => role))],
+      roles: [...new Set([...grants.map(({ role }) => role), ...(guest ? [guest.as] : [])])],
       note: bindsByCode
         ? `${note}. Employee number ${worker}, printed code ${known(demo.codes, sub)}`
         : note,

@@ -4,8 +4,13 @@ import { nameTrailKeeper } from "../../server/commands/name-trail-keeper";
 import { FORMER_WORKERS, HEAD_KEEPER, HELD, OFFICERS } from "../demo/retention";
 import { type Demo, known } from "./programme";
 
-/** People whose term is over, one whose records are held, and somebody outside who keeps the trail's head. */
-export async function layOutRetention(demo: Demo, now: Date): Promise<void> {
+/**
+ * People whose term is over, one whose records are held, and somebody outside who keeps the trail's head.
+ *
+ * @returns the ids of those people by employee number
+ */
+export async function layOutRetention(demo: Demo, now: Date): Promise<Map<string, string>> {
+  const ids = new Map<string, string>();
   await demo.at(now, async () => {
     for (const { site, number, name, hiredDaysAgo, leftDaysAgo } of FORMER_WORKERS) {
       const calendar = demo.calendar(site);
@@ -25,6 +30,7 @@ export async function layOutRetention(demo: Demo, now: Date): Promise<void> {
         wornGear: [],
         requirementReason: null,
       });
+      ids.set(number, id);
       if (number === HELD.number)
         await placeHold(officer, { siteId, workerId: id, reason: HELD.reason });
     }
@@ -32,4 +38,5 @@ export async function layOutRetention(demo: Demo, now: Date): Promise<void> {
     const keeper = { ...HEAD_KEEPER, timeZone: demo.calendar("ostmere").timeZone };
     await nameTrailKeeper(administrator, { keeper }, 0);
   });
+  return ids;
 }

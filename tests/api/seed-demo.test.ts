@@ -73,6 +73,9 @@ test("filled twice on one day it shows the same numbers", async () => {
      FROM findings f LEFT JOIN workers w ON w.id = f.worker_id LEFT JOIN jobs j ON j.id = f.job_id LEFT JOIN instruments i ON i.id = f.instrument_id
      ORDER BY 1, 2, 3, 4, 5`,
     "SELECT u.name, n.audience, n.state, count(*) FROM notices n JOIN users u ON u.id = n.recipient_id GROUP BY 1, 2, 3 ORDER BY 1, 2, 3",
+    `SELECT w.employee_number, l.due_on::text, l.written_at::date::text, l.language, l.notice_id IS NULL, a.way, a.signed_on::text FROM result_letters l
+     JOIN workers w ON w.id = l.worker_id LEFT JOIN notice_acknowledgements a ON a.letter_id = l.id ORDER BY 1, 2, 3`,
+    "SELECT u.name, t.name, t.scopes::text, t.expires_at::date::text, t.revoked_at IS NULL FROM api_tokens t JOIN users u ON u.id = t.user_id ORDER BY 1, 2",
     `SELECT h.starts_at, i.serial_number, h.values_count, c.channel, c.position, md5(c.packed)
      FROM time_histories h JOIN instruments i ON i.id = h.instrument_id JOIN time_history_chunks c ON c.history_id = h.id ORDER BY 1, 2, 4, 5`,
   ];
@@ -109,15 +112,61 @@ test("the local sign-in knows somebody for each role, and the code of the worker
   expect([...roles].sort()).toEqual([
     "administrator",
     "auditor",
+    "employer",
     "officer",
     "representative",
     "supervisor",
+    "visitor",
     "worker",
   ]);
   expect(people.some(({ emailVerified }) => !emailVerified)).toBe(true);
   expect(
     people.filter(({ note }) => /printed code [A-Z2-9]{4}-[A-Z2-9]{4}-[A-Z2-9]{4}$/.test(note)),
   ).toHaveLength(1);
+});
+
+test("two guests read for a while: of an agency, and a visitor", async () => {
+  expect(
+    await ask(
+      0,
+      `SELECT u.name, g.role, coalesce(g.employer_name, 'a year'), s.name, g.ends_at > now() FROM role_grants g JOIN users u ON u.id = g.user_id
+         JOIN sites s ON s.id = g.site_id WHERE g.ends_at IS NOT NULL ORDER BY 1`,
+    ),
+  ).toEqual([
+    "J. Threlkeld-Amos | auditor | a year | Ostmere works | true",
+    "R. Quennell | employer | Tideway Staffing | Ostmere works | true",
+  ]);
+});
+
+test("records are looked at, reported and erased at the end of their term", async () => {
+  expect(
+    await ask(
+      0,
+      "SELECT d.seed, g.records, g.questions FROM record_draws d JOIN record_draw_signatures g ON g.draw_id = d.id",
+    ),
+  ).toEqual(["gatepost 41 | 6 | 1"]);
+  expect(
+    await ask(
+      0,
+      "SELECT s.name, y.number FROM year_reports y JOIN sites s ON s.id = y.site_id ORDER BY 1",
+    ),
+  ).toEqual(["Kettle Bend works | 1", "Ostmere works | 1"]);
+  expect(
+    await ask(
+      0,
+      "SELECT e.state, p.state, w.name ~ '^Former worker ', e.proposed_by <> e.approved_by FROM erasures e JOIN erasure_people p ON p.erasure_id = e.id JOIN workers w ON w.id = p.worker_id",
+    ),
+  ).toEqual(["done | erased | true | true"]);
+});
+
+test("people have tokens, feeds, mails they do without, refusals and a paper at a finding", async () => {
+  expect(
+    await ask(
+      0,
+      `SELECT (SELECT count(*) FROM api_tokens WHERE revoked_at IS NULL AND expires_at > now()), (SELECT count(*) FROM api_tokens WHERE expires_at < now()),
+         (SELECT count(*) FROM calendar_feeds), (SELECT count(*) FROM mail_choices), (SELECT count(*) FROM protector_refusals), (SELECT count(*) FROM finding_files)`,
+    ),
+  ).toEqual(["1 | 1 | 2 | 1 | 2 | 1"]);
 });
 
 test("every task has a spectrum and LC − LA, and most levels rest on a survey with its samples", async () => {
