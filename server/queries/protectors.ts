@@ -3,7 +3,7 @@ import type { ProtectorFacts } from "../../shared/schemas/evaluation";
 import type { ProtectorInput } from "../../shared/schemas/protector";
 import { rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
-import { protectorPolicy } from "../policies";
+import { assignmentPolicy, protectorPolicy } from "../policies";
 
 export type ProtectorRow = z.infer<typeof ProtectorInput> & {
   id: string;
@@ -22,6 +22,10 @@ export interface ProtectorRevisionRow {
   isInForce: boolean;
 }
 
+/** Whoever this actor may know of, at the sites of theirs, has something of the register assigned today. */
+const wornToday = (actor: Actor): string =>
+  `a.valid @> current_date AND ${visible(assignmentPolicy, actor, "a")}`;
+
 export async function listProtectors(
   actor: Actor,
   id: string | null = null,
@@ -29,11 +33,20 @@ export async function listProtectors(
   return rows<ProtectorRow>(
     `SELECT m.id, m.name, m.kind, m.is_archived AS "isArchived", m.revision,
        (SELECT count(DISTINCT a.worker_id)::int FROM assignments a
-        WHERE m.id IN (a.inner_model_id, a.outer_model_id) AND a.valid @> current_date) AS "wearersToday"
+        WHERE m.id IN (a.inner_model_id, a.outer_model_id) AND ${wornToday(actor)}) AS "wearersToday"
      FROM protector_models m WHERE ${visible(protectorPolicy, actor, "m")} AND (CAST(:id AS uuid) IS NULL OR m.id = :id)
      ORDER BY m.is_archived, m.name, m.id`,
     { id },
   );
+}
+
+/** People, each once, however many protectors they have for their tasks. */
+export async function countWearers(actor: Actor): Promise<number> {
+  const [counted] = await rows<{ count: number }>(
+    `SELECT count(DISTINCT a.worker_id)::int AS count FROM assignments a WHERE ${wornToday(actor)}`,
+    {},
+  );
+  return counted?.count ?? 0;
 }
 
 /**

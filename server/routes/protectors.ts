@@ -16,7 +16,7 @@ import { requireRevision } from "../lib/revision";
 import { ProtectorModel } from "../models/protector";
 import { may, protectorPolicy } from "../policies";
 import { presentProtector, presentProtectorDetail } from "../presenters/protector";
-import { listProtectorRevisions, listProtectors } from "../queries/protectors";
+import { countWearers, listProtectorRevisions, listProtectors } from "../queries/protectors";
 
 async function view(actor: Actor, id: string) {
   const protector = only(await listProtectors(actor, id));
@@ -38,7 +38,10 @@ export function defineProtectorRoutes(): void {
         "in-force",
       );
       const dataOf = new Map(revisions.map((revision) => [revision.modelId, revision]));
-      return { rows: protectors.map((row) => presentProtector(actor, row, dataOf.get(row.id))) };
+      return {
+        rows: protectors.map((row) => presentProtector(actor, row, dataOf.get(row.id))),
+        wearersToday: await countWearers(actor),
+      };
     },
   );
 

@@ -10,6 +10,7 @@ import {
   STEADY,
 } from "../../tests/published/build-day";
 import { evaluateDay } from "../acoustics/day";
+import type { TimedTask } from "../acoustics/types";
 import { ruleSetVersion } from "../rule-sets";
 import { type ExpectedDay, factsAhead, faultsAhead, isSettled, orderAhead } from "./expected";
 import { proposeRemedy } from "./remedy";
@@ -36,7 +37,11 @@ function day(levelDb: number, wornPct: number, governing = UK): ExpectedDay {
   const level = buildLevel(levelDb, { metric: STEADY, lcMinusLaDb: 0 });
   const protection = buildProtection(muff);
   const task = buildTask("Run-up", 480, level, { protection, wornPct });
-  const input = dayOf(task);
+  return expectedOf([task], governing);
+}
+
+function expectedOf(tasks: readonly TimedTask[], governing = UK): ExpectedDay {
+  const input = dayOf(...tasks);
   return { input, governing, evaluation: evaluateDay(input, governing, []) };
 }
 
@@ -60,6 +65,36 @@ describe("the order of a day to come", () => {
     expect(noticedSentence(i18n, "en", kind, facts)).toMatch(
       /^Enough while worn; by the wearing time known it is off for .+ in Run-up: 93\.3 at the ear, limit 87$/,
     );
+  });
+
+  test("names the tasks that have to be worn through, no more than it takes, the loudest first", () => {
+    // Off for half of 2 h at 98 and half of 2 h at 96, 20 dB less under the muff; nothing is worn in 4 h at 80.
+    const across = (
+      ...levels: readonly (readonly [name: string, levelDb: number, min: number])[]
+    ) =>
+      expectedOf(
+        levels.map(([name, levelDb, min]) =>
+          buildTask(name, min, buildLevel(levelDb, { metric: STEADY, lcMinusLaDb: 0 }), {
+            protection: buildProtection(muff),
+            wornPct: 50,
+          }),
+        ),
+      );
+    // 10 lg((10^9.8 + 10^9.6) · 1.01/8 + 10^8/2) = 91.3; with the run-up alone worn through 87.5, still over 87.
+    const two = orderOf(across(["Idle", 80, 240], ["Turning", 96, 120], ["Run-up", 98, 120]));
+    expect(orderSentence(i18n, "en", two!.kind, two!.facts)).toBe(
+      "See that it stays on the whole time in Run-up and Turning",
+    );
+    expect(two?.facts.offMin).toBe(120);
+    expect(noticedSentence(i18n, "en", two!.kind, two!.facts)).toMatch(
+      /off for .+ in Run-up and Turning: 91\.3 at the ear, limit 87$/,
+    );
+    // With 94 in place of 96 and the run-up worn through 85.8: one is enough.
+    const one = orderOf(across(["Idle", 80, 240], ["Turning", 94, 120], ["Run-up", 98, 120]));
+    expect(orderSentence(i18n, "en", one!.kind, one!.facts)).toBe(
+      "See that it stays on the whole time in Run-up",
+    );
+    expect(one?.facts.offMin).toBe(60);
   });
 
   test("is about the protector where that takes too little, and nothing where the day is right", () => {

@@ -1,3 +1,4 @@
+import { evaluateDay } from "../acoustics/day";
 import { judgedAtEar } from "../acoustics/protection/judged-at-ear";
 import type { DayEvaluation, DayInput, RuleSetVersion } from "../acoustics/types";
 import { limitAtEar } from "../rule-sets";
@@ -47,7 +48,7 @@ export function faultsAhead({ input, evaluation, governing }: ExpectedDay): Ahea
 
 /**
  * The one order of an expected day. Where the protector would be enough if it stayed on, it is about the wearing, in the
- * task in which most gets in. Null: nothing is wrong.
+ * tasks that have to be worn through. Null: nothing is wrong.
  */
 export function orderAhead(
   day: ExpectedDay,
@@ -59,7 +60,7 @@ export function orderAhead(
   const facts = { ...worst.facts, ...proposal };
   if (leftOf(facts)?.kind !== "wear-throughout" && worst.kind !== "not-worn-long-enough")
     return { kind: worst.kind, facts };
-  const short = shortest(day);
+  const short = tasksToWearThrough(day);
   return short
     ? {
         kind: "not-worn-long-enough",
@@ -68,23 +69,71 @@ export function orderAhead(
     : { kind: worst.kind, facts };
 }
 
-/** The task off in which lets in the most, dB; for how long it is off, minutes. */
-function shortest({ input, evaluation }: ExpectedDay): FindingFacts | null {
+/** A task in which the protector is off for a part. */
+interface PartlyWorn {
+  readonly taskId: string;
+  readonly taskName: string;
+  readonly offMin: number;
+  /** What gets in while it is off, in minutes of a level of 0 dB. */
+  readonly letIn: number;
+}
+
+/**
+ * The fewest tasks that make the day right once the protector stays on throughout them, most let in first, and for how
+ * long it is off in them together, minutes. All of them where none of it is enough; null where it is off in none.
+ */
+function tasksToWearThrough({ input, evaluation, governing }: ExpectedDay): FindingFacts | null {
+  const off = partlyWorn(input, evaluation);
+  if (off.length === 0) return null;
+  const isEnough = (count: number): boolean => {
+    const worn = wornThrough(input, new Set(off.slice(0, count).map(({ taskId }) => taskId)));
+    const then = evaluateDay(worn, governing, []);
+    return faultsAhead({ input: worn, evaluation: then, governing }).length === 0;
+  };
+  const enough = off.findIndex((_, index) => isEnough(index + 1));
+  const named = enough < 0 ? off : off.slice(0, enough + 1);
+  return {
+    taskName: named[0]?.taskName,
+    taskNames: named.map(({ taskName }) => taskName),
+    offMin: named.reduce((sum, { offMin }) => sum + offMin, 0),
+  };
+}
+
+/** One entry a task, whichever times of the day it takes. */
+function partlyWorn(input: DayInput, evaluation: DayEvaluation): PartlyWorn[] {
   const timed = new Map(
     input.shifts.flatMap(({ tasks }) => tasks.map((task) => [task.id, task] as const)),
   );
-  const off = evaluation.tasks.flatMap((atEar) => {
+  const byTask = new Map<string, PartlyWorn>();
+  for (const atEar of evaluation.tasks) {
     const task = timed.get(atEar.timedTaskId);
-    if (!task || !atEar.isWorn || task.wornPct === null || task.wornPct >= 100) return [];
-    const { inTaskDb } = judgedAtEar(atEar, task.protection, input.site);
-    const weight = inTaskDb === null ? 0 : task.durationMin * 10 ** (inTaskDb / 10);
-    const offMin = (task.durationMin * (100 - task.wornPct)) / 100;
-    return [{ weight, taskName: task.name, offMin }];
-  });
-  if (off.length === 0) return null;
-  const { taskName, offMin } = off.reduce((a, b) => (b.weight > a.weight ? b : a));
-  return { taskName, offMin };
+    if (!task || !atEar.isWorn || task.wornPct === null || task.wornPct >= 100) continue;
+    const { inTaskDb, wornDb } = judgedAtEar(atEar, task.protection, input.site);
+    const more =
+      inTaskDb === null || wornDb === null
+        ? 0
+        : task.durationMin * (10 ** (inTaskDb / 10) - 10 ** (wornDb / 10));
+    const known = byTask.get(task.taskId);
+    byTask.set(task.taskId, {
+      taskId: task.taskId,
+      taskName: task.name,
+      offMin: (known?.offMin ?? 0) + (task.durationMin * (100 - task.wornPct)) / 100,
+      letIn: (known?.letIn ?? 0) + more,
+    });
+  }
+  return [...byTask.values()].toSorted((a, b) => b.letIn - a.letIn);
 }
+
+/** The day as it would be with what is worn in these tasks on the whole time. */
+const wornThrough = (input: DayInput, taskIds: ReadonlySet<string>): DayInput => ({
+  ...input,
+  shifts: input.shifts.map((shift) => ({
+    ...shift,
+    tasks: shift.tasks.map((task) =>
+      taskIds.has(task.taskId) && task.wornPct !== null ? { ...task, wornPct: 100 } : task,
+    ),
+  })),
+});
 
 /** A finding of the past as far as it is to be held against the days since. */
 interface Past {

@@ -33,6 +33,12 @@ export const numberOf = (facts: FindingFacts, name: string): number | null => {
 const textsIn = (value: unknown): string[] =>
   Array.isArray(value) ? value.filter((one): one is string => typeof one === "string") : [];
 
+/** The tasks that a finding names: those of a list, else the one. */
+export function tasksOf(i18n: I18n, facts: FindingFacts): string | null {
+  const names = textsIn(facts.taskNames);
+  return names.length > 0 ? listWords(i18n, names) : textOf(facts, "taskName");
+}
+
 const recordIn = (value: unknown): Readonly<Record<string, unknown>> | null =>
   typeof value === "object" && value !== null ? (value as Record<string, unknown>) : null;
 

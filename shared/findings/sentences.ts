@@ -7,7 +7,15 @@ import { formatLevel, formatLevelChange, formatLimit } from "../format/level";
 import type { Locale } from "../i18n/index";
 import type { FindingKind } from "../schemas/finding";
 import { levelWithBasis } from "./basis";
-import { type FindingFacts, leftOf, numberOf, remedyOf, remedyWords, textOf } from "./facts";
+import {
+  type FindingFacts,
+  leftOf,
+  numberOf,
+  remedyOf,
+  remedyWords,
+  tasksOf,
+  textOf,
+} from "./facts";
 
 /** What a worker's protectors ask for: one order, whichever finding of the day it stands on. Null where nothing is known. */
 function protectorOrder(i18n: I18n, facts: FindingFacts): string | null {
@@ -55,7 +63,7 @@ export function orderSentence(
   kind: FindingKind,
   facts: FindingFacts,
 ): string {
-  const task = textOf(facts, "taskName");
+  const task = tasksOf(i18n, facts);
   const order = protectorOrder(i18n, facts);
   switch (kind) {
     case "over-limit-outside":
@@ -149,7 +157,7 @@ export function noticedSentence(
   kind: FindingKind,
   facts: FindingFacts,
 ): string {
-  const task = textOf(facts, "taskName") ?? i18n.t("noise");
+  const task = tasksOf(i18n, facts) ?? i18n.t("noise");
   const protector = textOf(facts, "protector") ?? i18n.t("The protector");
   const levelDb = numberOf(facts, "levelDb");
   const dosePct = numberOf(facts, "dosePct");

@@ -142,7 +142,11 @@ export const ProtectorView = ProtectorInput.extend({
   can: Can("change"),
 });
 export type ProtectorView = z.infer<typeof ProtectorView>;
-export const ProtectorList = z.object({ rows: z.array(ProtectorView) });
+export const ProtectorList = z.object({
+  rows: z.array(ProtectorView),
+  /** People, each once: of those that the asker may know of. */
+  wearersToday: z.number(),
+});
 export const ProtectorDetail = ProtectorView.extend({
   history: z.array(
     RegisterData.extend({

@@ -180,7 +180,7 @@ function read(path: string): object {
   if (pathname === "/api/issues") return IssuePage.parse({ rows: [], next: null });
   if (pathname === "/api/tasks") return TaskList.parse({ rows: [] });
   if (pathname === "/api/areas") return AreaList.parse({ rows: [] });
-  return ProtectorList.parse({ rows: [] });
+  return ProtectorList.parse({ rows: [], wearersToday: 0 });
 }
 
 function open(address: string = paths.fitting) {

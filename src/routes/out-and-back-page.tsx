@@ -1,6 +1,6 @@
 import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
-import { useRef, useState } from "react";
+import { useEffect, useRef, useState } from "react";
 import { useSearchParams } from "react-router-dom";
 import { z } from "zod";
 import { formatDay } from "../../shared/format/date";
@@ -67,6 +67,12 @@ export function Component() {
   });
   const areas = useQuery(references.areas(site?.id ?? ""));
   const scan = useRef<HTMLInputElement>(null);
+  const canScan = board.data?.can.change === true;
+  // The page is for this one field: a scanner sends its keys to whatever has the focus. The board
+  // comes after the page, so whoever is already typing in another field keeps it.
+  useEffect(() => {
+    if (canScan && document.activeElement === document.body) scan.current?.focus();
+  }, [canScan]);
   const handles = useRef(new Map<string, OutingRowHandle>());
   const [said, setSaid] = useState<{ text: string; isTrouble: boolean } | null>(null);
   const rows = board.data?.rows ?? [];
@@ -146,7 +152,7 @@ export function Component() {
             onChoose={(chosen) => narrow("date", chosen === today ? null : chosen)}
           />
         </FilterRow>
-        {board.data?.can.change && (
+        {canScan && (
           <form
             className="outing-scan"
             onSubmit={(event) => {
@@ -162,9 +168,6 @@ export function Component() {
               autoComplete="off"
               autoCapitalize="off"
               spellCheck={false}
-              // The page is for this one field: a scanner sends its keys to whatever has the focus.
-              // biome-ignore lint/a11y/noAutofocus: see above
-              autoFocus
               aria-describedby="outings-said"
             />
             <p

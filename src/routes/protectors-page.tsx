@@ -37,7 +37,6 @@ export function Component() {
     active: i18n.t("With an active part"),
     archived: i18n.t("No longer given out"),
   };
-  const wearers = rows.reduce((sum, row) => sum + row.wearersToday, 0);
   /** The heading says whether it has an active part, except of what is no longer given out. */
   const kindOf = ({ kind, isArchived, data: { active } }: ProtectorView) =>
     isArchived && active
@@ -68,7 +67,10 @@ export function Component() {
             data &&
             i18n.t(
               "{models, plural, one {# protector} other {# protectors}} on the register, assigned to {wearers, plural, one {# person} other {# people}} today.",
-              { models: rows.filter((row) => !row.isArchived).length, wearers },
+              {
+                models: rows.filter((row) => !row.isArchived).length,
+                wearers: data.wearersToday,
+              },
             )
           }
           actions={

@@ -147,11 +147,13 @@ describe("a protector", () => {
       inner,
       toDate: daysFromToday(-1),
     });
-    const { rows } = (await client.get("/protectors")).body;
+    const { rows, wearersToday } = (await client.get("/protectors")).body;
     const wearers = [inner, outer].map(
       ({ id }) => rows.find((row: { id: string }) => row.id === id).wearersToday,
     );
     expect(wearers).toEqual([1, 1]);
+    // Both are on the same head.
+    expect(wearersToday).toBe(1);
   });
 
   test("keeps its kind once somebody has it", async () => {

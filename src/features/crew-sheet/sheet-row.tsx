@@ -164,6 +164,7 @@ function AheadOrder({ kind, facts }: NonNullable<CrewSheetRow["ahead"]>) {
     <>
       <div className="sheet-order">
         <div className="sheet-order-words">{words(orderSentence(i18n, locale, kind, facts))}</div>
+        <span className="sheet-state">{i18n.t("Goes once the day is right")}</span>
       </div>
       <p className="sheet-noticed">{words(noticedSentence(i18n, locale, kind, facts))}</p>
     </>
