@@ -142,6 +142,14 @@ const shots: Shot[] = [
     height: 900,
   },
   { file: "people", role: "administrator", path: "/people", width: 1280, height: 800 },
+  {
+    file: "site-figures",
+    role: "representative",
+    path: "/site-figures",
+    width: 1280,
+    height: 1000,
+  },
+  { file: "shared-results", role: "employer", path: "/shared-results", width: 1280, height: 800 },
 ];
 
 const browser = await startBrowser();

@@ -45,6 +45,27 @@ export class SiteCalendar {
     return null;
   }
 
+  private readonly counted = new Map<DemoCrew["pattern"], Map<string, number>>();
+
+  /**
+   * How many working days back a working day of a crew lies; 0 is today. What happens by chance hangs on this and not on
+   * the date, so that the demo tells the same on whatever day it is filled.
+   */
+  workdaysAgo({ pattern }: Pick<DemoCrew, "pattern">, date: string): number {
+    let ago = this.counted.get(pattern);
+    if (!ago) {
+      ago = new Map();
+      // Another site's first day may be the day before.
+      const first = addDays(this.first, -1);
+      for (let day = this.today; day >= first; day = addDays(day, -1))
+        if (this.works({ pattern }, day)) ago.set(day, ago.size);
+      this.counted.set(pattern, ago);
+    }
+    const found = ago.get(date);
+    if (found === undefined) throw new Error(`no ${pattern} crew of the demo works on ${date}`);
+    return found;
+  }
+
   /** The working day of a crew so many after the first of the demo. */
   workdayIn(crew: Pick<DemoCrew, "pattern">, count: number): string {
     let date = this.first;
@@ -70,10 +91,15 @@ function isFestive(date: string): boolean {
   return day >= "12-24" || day === "01-01";
 }
 
+export const WORKDAYS_A_WEEK = 5;
+export const workweek = (workdaysAgo: number) => Math.floor(workdaysAgo / WORKDAYS_A_WEEK);
+
 /** Leave comes in weeks, sickness in days. In the last days only the story decides who is there. */
-export function isAway(number: string, date: string, ago: number): boolean {
-  if (ago < 9) return false;
-  const week = Math.floor(Date.parse(date) / (7 * 86_400_000));
+export function isAway(number: string, date: string, workdaysAgo: number): boolean {
+  if (workdaysAgo < 7) return false;
   if (isFestive(date) && chance(number, "festive", date.slice(0, 4)) < 0.7) return true;
-  return chance(number, "leave", week) < 0.08 || chance(number, "ill", date) < 0.015;
+  return (
+    chance(number, "leave", workweek(workdaysAgo)) < 0.08 ||
+    chance(number, "ill", workdaysAgo) < 0.015
+  );
 }

@@ -1,3 +1,4 @@
+import { groupBy } from "../../server/lib/group-by";
 import type { MeterSettings } from "../../shared/acoustics/types";
 import type { ShiftTaskInput } from "../../shared/schemas/shift";
 import { type DemoWorker, WORKERS } from "../demo/people";
@@ -15,10 +16,10 @@ import {
   THRESHOLD_90,
 } from "../demo/programme";
 import type { DemoRun, Departure } from "../demo/story";
-import { daysBetween, isAway } from "./calendar";
+import { daysBetween, isAway, WORKDAYS_A_WEEK, workweek } from "./calendar";
 import { chance } from "./chance";
 import { type Demo, known, taskKey } from "./programme";
-import { type DatedStory, departureKey } from "./story";
+import { type DatedStory, departureKey, isToldOf } from "./story";
 
 export type PlannedTask = ShiftTaskInput & { name: string };
 
@@ -27,6 +28,8 @@ export interface PlannedShift {
   workerId: string;
   crew: DemoCrew;
   date: string;
+  /** Of its crew; 0 is today. */
+  workdaysAgo: number;
   lengthMin: number;
   tasks: PlannedTask[];
   note: string | null;
@@ -57,11 +60,15 @@ export function planDay(demo: Demo, story: DatedStory, site: SiteKey, date: stri
       : own;
     if (!calendar.works(crew, date)) continue;
     const workerId = known(demo.workers, worker.number).id;
-    if (departure?.isAbsent || (!departure && isAway(worker.number, date, ago)))
-      day.absent.push({ worker, workerId, crew, date });
-    else day.shifts.push(planShift(demo, worker, workerId, crew, date, departure));
+    const workdaysAgo = calendar.workdaysAgo(crew, date);
+    const isOff =
+      !departure &&
+      !isToldOf(story, worker.number, date) &&
+      isAway(worker.number, date, workdaysAgo);
+    if (departure?.isAbsent || isOff) day.absent.push({ worker, workerId, crew, date });
+    else day.shifts.push(planShift(demo, { worker, workerId, crew, date, workdaysAgo }, departure));
   }
-  addRoutineRuns(day, date, ago);
+  addRoutineRuns(day, ago);
   return day;
 }
 
@@ -72,18 +79,17 @@ function isEmployed(demo: Demo, { number }: DemoWorker, date: string): boolean {
 
 function planShift(
   demo: Demo,
-  worker: DemoWorker,
-  workerId: string,
-  crew: DemoCrew,
-  date: string,
+  at: Pick<PlannedShift, "worker" | "workerId" | "crew" | "date" | "workdaysAgo">,
   departure: Departure | undefined,
 ): PlannedShift {
+  const { worker, crew, workdaysAgo } = at;
   const job = JOBS.find(({ name }) => name === (departure?.onLoan?.job ?? worker.job))!;
-  const isLonger = departure?.minutes === undefined && chance(worker.number, "longer", date) < 0.04;
+  const isLonger =
+    departure?.minutes === undefined && chance(worker.number, "longer", workdaysAgo) < 0.04;
   const lengthMin = crew.usualLengthMin + (isLonger ? 60 : 0);
   const minutes = departure?.minutes
     ? filledUp(job, lengthMin, departure.minutes)
-    : varied(job, lengthMin, worker.number, date);
+    : varied(job, lengthMin, worker.number, workdaysAgo);
   const rest = departure?.leavesOutMin ?? 0;
   const tasks = Object.entries(minutes).map(([name, given]) => {
     const durationMin = name === job.rest ? given - rest : given;
@@ -91,15 +97,12 @@ function planShift(
       name,
       taskId: known(demo.tasks, taskKey(crew.site, name)).id,
       durationMin,
-      wornPct: worn(crew.site, name, worker.number, date, departure),
+      wornPct: worn(crew.site, name, worker.number, workdaysAgo, departure),
       wornIsShiftWide: false,
     };
   });
   return {
-    worker,
-    workerId,
-    crew,
-    date,
+    ...at,
     lengthMin,
     tasks,
     note: departure?.note ?? null,
@@ -113,14 +116,16 @@ function varied(
   job: (typeof JOBS)[number],
   lengthMin: number,
   number: string,
-  date: string,
+  workdaysAgo: number,
 ): Record<string, number> {
   const minutes: Record<string, number> = {};
   let left = lengthMin;
   for (const [name, nominal] of Object.entries(job.tasks)) {
     if (name === job.rest) continue;
     const isShort = nominal < 30;
-    minutes[name] = isShort ? nominal : toStep(nominal * (0.9 + 0.2 * chance(number, name, date)));
+    minutes[name] = isShort
+      ? nominal
+      : toStep(nominal * (0.9 + 0.2 * chance(number, name, workdaysAgo)));
     left -= minutes[name];
   }
   return Object.fromEntries(
@@ -148,25 +153,26 @@ function worn(
   site: SiteKey,
   name: string,
   number: string,
-  date: string,
+  workdaysAgo: number,
   departure: Departure | undefined,
 ): number | null {
   const task = taskOf(site, name);
   if (!isInNoise(task) || departure?.worn === null) return null;
   const told = departure?.worn?.[name];
   if (told !== undefined) return told;
-  return task.levelDb >= 95 ? 100 : 100 - Math.floor(3 * chance(number, "worn", name, date));
+  return task.levelDb >= 95 ? 100 : 100 - Math.floor(3 * chance(number, "worn", name, workdaysAgo));
 }
 
 /** A run a week and crew, on somebody of whom the story has nothing else to tell. */
-function addRoutineRuns({ shifts }: PlannedDay, date: string, ago: number): void {
+function addRoutineRuns({ shifts }: PlannedDay, ago: number): void {
   if (ago < 2) return;
-  const week = Math.floor(Date.parse(date) / (7 * 86_400_000));
-  for (const crew of CREWS) {
-    const weekday = Math.floor(5 * chance(crew.name, "run", week)) + 1;
-    if (new Date(`${date}T00:00:00Z`).getUTCDay() !== weekday) continue;
-    const able = shifts.filter((shift) => shift.crew.name === crew.name && !shift.isTold);
-    const chosen = able[Math.floor(able.length * chance(crew.name, "wearer", week))];
+  for (const [crew, ofCrew] of groupBy(shifts, ({ crew: { name } }) => name)) {
+    const { workdaysAgo } = ofCrew[0]!;
+    const week = workweek(workdaysAgo);
+    if (workdaysAgo % WORKDAYS_A_WEEK !== Math.floor(WORKDAYS_A_WEEK * chance(crew, "run", week)))
+      continue;
+    const able = ofCrew.filter((shift) => !shift.isTold);
+    const chosen = able[Math.floor(able.length * chance(crew, "wearer", week))];
     if (chosen) chosen.run = routineRun(chosen, ago);
   }
 }
@@ -186,8 +192,8 @@ function routineRun(shift: PlannedShift, ago: number): DemoRun {
   const { site, name } = shift.crew;
   const isUnchecked =
     name === UNCHECKED.crew && ago <= UNCHECKED.fromDaysAgo && ago >= UNCHECKED.toDaysAgo;
-  const drift = Math.round(3 * chance(shift.worker.number, "drift", shift.date)) / 10;
-  const deviationDb = 2 * chance(shift.worker.number, "reading", shift.date) - 1;
+  const drift = Math.round(3 * chance(shift.worker.number, "drift", shift.workdaysAgo)) / 10;
+  const deviationDb = 2 * chance(shift.worker.number, "reading", shift.workdaysAgo) - 1;
   return {
     instrument: isUnchecked
       ? UNCHECKED.instrument

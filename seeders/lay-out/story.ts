@@ -1,3 +1,5 @@
+import { groupBy } from "../../server/lib/group-by";
+import { addDays } from "../../shared/time/zone";
 import { WORKERS } from "../demo/people";
 import type { SiteKey } from "../demo/programme";
 import { CREWS } from "../demo/programme";
@@ -6,10 +8,20 @@ import type { Demo } from "./programme";
 
 export type DatedStep = Step & { date: string; site: SiteKey };
 
+/** What a chapter's first step is about was seen in the days before it. */
+const SEEN_BEFORE_DAYS = 7;
+
+interface Span {
+  readonly from: string;
+  readonly to: string;
+}
+
 /** The story with its working days put on the calendar. */
 export interface DatedStory {
   /** By employee number and date. */
   departures: ReadonlyMap<string, Departure>;
+  /** By employee number the dates between which a chapter tells of somebody: on leave then, nothing of it would happen. */
+  told: ReadonlyMap<string, readonly Span[]>;
   /** In order of time. */
   steps: readonly DatedStep[];
 }
@@ -22,6 +34,21 @@ const crewOf = (name: string) => {
   return crew;
 };
 
+/** Whom a step is about, by employee number. */
+function workersOf(step: Step): readonly string[] {
+  if ("assign" in step) return step.assign.workers;
+  if ("finding" in step) return step.finding.worker ? [step.finding.worker] : [];
+  if ("correct" in step) return [step.correct.worker];
+  if ("voidShift" in step) return [step.voidShift.worker];
+  if ("loan" in step) return [step.loan.worker];
+  if ("report" in step) return [step.report.worker];
+  return [];
+}
+
+/** Whether a chapter tells of somebody on a date. */
+export const isToldOf = ({ told }: DatedStory, number: string, date: string): boolean =>
+  (told.get(number) ?? []).some(({ from, to }) => date >= from && date <= to);
+
 export function dateStory(demo: Demo): DatedStory {
   const dateOf = (crewName: string, day: Day) => {
     const crew = crewOf(crewName);
@@ -31,6 +58,7 @@ export function dateStory(demo: Demo): DatedStory {
       : calendar.workdayIn(crew, day.in);
   };
   const departures = new Map<string, Departure>();
+  const told = new Map<string, Span[]>();
   const steps: DatedStep[] = [];
   for (const chapter of STORY) {
     const dated = (chapter.departures ?? []).flatMap((departure) => {
@@ -53,11 +81,22 @@ export function dateStory(demo: Demo): DatedStory {
       if (departures.has(key)) throw new Error(`two departures of ${key}`);
       departures.set(key, departure);
     }
+    const about = [
+      ...dated.map(({ departure, date }) => ({ number: departure.worker, date: date! })),
+      ...taken.flatMap(({ step, date }) =>
+        workersOf(step).map((number) => ({ number, date: date! })),
+      ),
+    ];
+    for (const [number, times] of groupBy(about, (one) => one.number)) {
+      const dates = times.map(({ date }) => date).sort();
+      const from = addDays(dates[0]!, -SEEN_BEFORE_DAYS);
+      told.set(number, [...(told.get(number) ?? []), { from, to: dates.at(-1)! }]);
+    }
     for (const { step, date } of taken)
       steps.push({ ...step, date: date!, site: crewOf(step.crew).site });
   }
   steps.sort((a, b) =>
     a.date + a.at < b.date + b.at ? -1 : a.date + a.at > b.date + b.at ? 1 : 0,
   );
-  return { departures, steps };
+  return { departures, told, steps };
 }

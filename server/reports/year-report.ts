@@ -406,7 +406,7 @@ function basis(i18n: I18n, { ruleSets }: YearReportFigures, issued: YearReportRo
             ruleSet ? `${i18n._(ruleSet.title)}. ${ruleSet.citation}` : key,
           ] as const;
         }),
-        [i18n.t("Issued by"), isolate(issued.authorName)],
+        [i18n.t("Report made by"), isolate(issued.authorName)],
         [i18n.t("Id of the report"), issued.id],
         [
           i18n.t("Results in force then"),

@@ -259,7 +259,7 @@ export function DataTable<Row extends RowData>({
                           <td
                             key={cell.id}
                             data-column={column.id}
-                            data-head={typeof column.head === "string" ? column.head : undefined}
+                            data-head={stackedHead(column)}
                             className={cellClass(column)}
                           >
                             {column.cell(row.original)}
@@ -294,6 +294,12 @@ export function DataTable<Row extends RowData>({
       )}
     </div>
   );
+}
+
+/** What stands over a cell where the row is stacked: the column's head with its unit. */
+function stackedHead<Row>({ head, unit }: DataColumn<Row>): string | undefined {
+  if (typeof head !== "string") return undefined;
+  return typeof unit === "string" ? `${head}, ${unit}` : head;
 }
 
 function cellClass<Row>(column: DataColumn<Row>): string | undefined {
