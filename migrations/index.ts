@@ -41,6 +41,7 @@ import { retention } from "./20261203140100-retention";
 import { mailEvents } from "./20261203150000-mail-events";
 import { mailChoices } from "./20261203150100-mail-choices";
 import { bouncesOfOtherMails } from "./20261203150200-bounces-of-other-mails";
+import { recordTransfers } from "./20261203160000-record-transfers";
 
 /** In the order in which they run. */
 export const migrations = [
@@ -87,4 +88,5 @@ export const migrations = [
   employerDuties,
   representatives,
   employerGrants,
+  recordTransfers,
 ];

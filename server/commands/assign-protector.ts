@@ -12,6 +12,8 @@ import { Area } from "../models/site";
 import { Task } from "../models/task";
 import type { Worker } from "../models/worker";
 import { programmePolicy, protectorPolicy } from "../policies";
+import { barsToGiving } from "../queries/barred";
+import { barCode } from "./bar-code";
 import { markDaysStale } from "./mark-days-stale";
 
 type Person = Pick<Worker, "id" | "hiredOn" | "leftOn">;
@@ -71,18 +73,29 @@ export async function assignProtector(
 
 /**
  * The same protector for many, as assignProtector; whoever has it for this use throughout that time is left as they are,
- * whatever the size where none is named. Returns the new ids, and the workers left out.
+ * whatever the size where none is named. Nobody is given what is out of the question for them. Returns the new ids, and
+ * the workers left out.
  *
  * @throws AppError as assignProtector.
  */
 export async function assignToMany(
   actor: Actor,
-  workers: readonly Person[],
+  workers: readonly Worker[],
   input: AssignmentInput,
   paths: Paths,
 ): Promise<{ ids: string[]; alreadyHad: string[] }> {
   const holders = new Set(await holdersOf(workers, input));
   const without = [...workers.entries()].filter(([, { id }]) => !holders.has(id));
+  const bars = await barsToGiving(
+    actor,
+    without.map(([, worker]) => worker),
+    input,
+  );
+  const barred = without.flatMap(([index, { id }]) => {
+    const bar = bars.get(id);
+    return bar ? [issue(paths.worker(index, "innerModelId"), barCode(bar))] : [];
+  });
+  if (barred.length > 0) throw unprocessable(barred);
   const ids =
     without.length === 0
       ? []

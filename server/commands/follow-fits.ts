@@ -3,6 +3,7 @@ import type { FindingState } from "../../shared/schemas/finding";
 import { recordAudit, recordAuditMany } from "../lib/audit";
 import { execute, rows } from "../lib/db";
 import { fitDues } from "../queries/fit-dues";
+import { ratesPair } from "../queries/own-attenuation";
 
 /** What the program itself closes these findings for; whatever else is there, a person wrote. */
 const OWN_REASONS = [
@@ -67,7 +68,7 @@ function standings(workerId: string, modelId: string): Promise<Standing[]> {
   return rows<Standing>(
     `SELECT m.id AS "modelId", m.name AS protector, w.site_id AS "siteId", to_json(t) AS test, to_json(o) AS open, to_json(c) AS closed,
        EXISTS (SELECT 1 FROM protector_issues i JOIN fit_tests f ON f.id = i.fit_test_id AND NOT f.is_void
-               JOIN fit_test_revisions v ON v.id = f.current_revision_id AND (v.has_passed OR v.need_db <= 0)
+               JOIN fit_test_revisions v ON v.id = f.current_revision_id AND ${ratesPair("v")} AND (v.has_passed OR v.need_db <= 0)
                WHERE i.worker_id = w.id AND i.model_id <> m.id AND i.ended_on IS NULL AND i.issued_on >= t."testedOn")
        AND NOT ${isWorn("current_date")} AS "isAnswered",
        EXISTS (SELECT 1 FROM assignments a WHERE ${ofModel} AND upper(a.valid) > t."testedOn") AND NOT ${isWorn("current_date + 1")} AS "isLaidDown"
@@ -76,7 +77,7 @@ function standings(workerId: string, modelId: string): Promise<Standing[]> {
      LEFT JOIN LATERAL (
        SELECT f.id, f.tested_on AS "testedOn", v.par_db AS "parDb", v.need_db AS "needDb", v.has_passed AS "hasPassed"
        FROM fit_tests f JOIN fit_test_revisions v ON v.id = f.current_revision_id
-       WHERE f.worker_id = w.id AND f.model_id = m.id AND NOT f.is_void AND (v.has_passed IS NOT NULL OR (v.par_db IS NOT NULL AND v.need_db <= 0))
+       WHERE f.worker_id = w.id AND f.model_id = m.id AND NOT f.is_void AND ${ratesPair("v")} AND (v.has_passed IS NOT NULL OR v.need_db <= 0)
        ORDER BY f.tested_on DESC, f.created_at DESC LIMIT 1) t ON TRUE
      LEFT JOIN LATERAL (
        SELECT x.id, x.state, x.facts->>'fitTestId' AS "testId" FROM findings x

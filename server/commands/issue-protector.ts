@@ -8,7 +8,9 @@ import { issue, notFound, unprocessable } from "../lib/errors";
 import { type Actor, visible } from "../lib/policy";
 import type { Worker } from "../models/worker";
 import { fitPolicy, protectorPolicy } from "../policies";
+import { barsAtDesk } from "../queries/barred";
 import { assignIssued } from "./assign-issued";
+import { barCode } from "./bar-code";
 import { followFits } from "./follow-fits";
 import { moveStock, stockOf } from "./move-stock";
 
@@ -111,6 +113,8 @@ async function check(
     stock,
   );
   if (reason === null && asked !== null) issues.push(issue(["reason"], asked));
+  const bar = (await barsAtDesk(actor, worker, modelId)).issue;
+  if (bar) issues.push(issue(["modelId"], barCode(bar)));
   if (fitTestId !== null) issues.push(...(await fitTestIssues(actor, worker, input, fitTestId)));
   if (issues.length > 0) throw unprocessable(issues);
 }

@@ -11,13 +11,16 @@ import { type Actor, authorize, findVisible } from "../lib/policy";
 import { FitTest, type MicrophoneCheck } from "../models/fit";
 import type { Worker } from "../models/worker";
 import { fitPolicy } from "../policies";
+import { rulesOn } from "../queries/site-settings";
+import { workerNoise } from "../queries/worker-noise";
 import { correctFitTest, recordFitTest } from "./record-fit-test";
 
 const METHOD = "two-microphones";
 
 /**
  * A check that gave a personal attenuation becomes a fit test of its own, or the other ear of one of the same day. One
- * that only says whether the active part does its work does so too, without a trial: nothing is rated by it. Check and
+ * that only says whether the active part does its work does so too, without a trial: nothing is rated by it. Where no
+ * need is stated, the rating is held against what the worker's noise asks for. Check and
  * worker are locked. Returns the fit test's id.
  *
  * @throws AppError wrong-state where it is not analysed or gave neither; invalid, not-found.
@@ -34,7 +37,7 @@ export async function keepMicrophoneCheck(
   const fitTestId =
     keep.joinFitTestId === null
       ? await keepAlone(actor, check, worker, analysis, keep)
-      : await join(actor, check, analysis, keep, keep.joinFitTestId);
+      : await join(actor, check, worker, analysis, keep, keep.joinFitTestId);
   await execute(
     "UPDATE microphone_checks SET state = 'kept', fit_test_id = $2, updated_at = now(), revision = revision + 1 WHERE id = $1",
     [check.id, fitTestId],
@@ -72,7 +75,7 @@ async function keepAlone(
       facts,
       ...site,
       // Without a rating there is nothing to hold against it.
-      needDb: analysis.parDb === null ? null : needDb,
+      needDb: analysis.parDb === null ? null : (needDb ?? (await needOf(worker, testedOn))),
       note: "",
     },
     analysis.active?.hasPassed ?? null,
@@ -80,14 +83,19 @@ async function keepAlone(
   return id;
 }
 
+/** What the noise asked for on that day, as at the fitting desk, dB; null: it isn't known, or the site had no rules yet. */
+const needOf = async (worker: Worker, date: string): Promise<number | null> =>
+  (await rulesOn(worker.siteId, date)) ? (await workerNoise(worker, date)).need.needDb : null;
+
 interface Kept extends Omit<FitTestChange, "reason"> {
   activePassed: boolean | null;
 }
 
-/** A new revision of the other ear's test. Its size, need and confidence stay. */
+/** A new revision of the other ear's test. Its size, confidence, and the need that it states stay. */
 async function join(
   actor: Actor,
-  { ear, workerId, modelId }: MicrophoneCheck,
+  { ear, modelId }: MicrophoneCheck,
+  worker: Worker,
   analysis: CheckAnalysis,
   { testedOn }: CheckKeep,
   fitTestId: string,
@@ -102,7 +110,7 @@ async function join(
   if (!kept) throw notFound();
   const { activePassed, ...statement } = kept;
   const isOther =
-    test.workerId === workerId &&
+    test.workerId === worker.id &&
     test.modelId === modelId &&
     test.testedOn === testedOn &&
     !test.isVoid &&
@@ -110,10 +118,12 @@ async function join(
     isEarOpen(statement.facts, ear) &&
     isRated(statement.facts) === (analysis.parDb !== null);
   if (!isOther) throw unprocessable([issue(["joinFitTestId"], "not-the-other-ear")]);
+  const needDb =
+    statement.needDb ?? (analysis.parDb === null ? null : await needOf(worker, testedOn));
   await correctFitTest(
     actor,
     test,
-    { ...statement, facts: withEar(statement.facts, ear, analysis), reason: "other-ear" },
+    { ...statement, needDb, facts: withEar(statement.facts, ear, analysis), reason: "other-ear" },
     bothEars(activePassed, analysis.active?.hasPassed ?? null),
   );
   return test.id;

@@ -1,5 +1,4 @@
 import { randomUUID } from "node:crypto";
-import { arithmeticMean } from "../../shared/acoustics/mean";
 import { fitRating } from "../../shared/acoustics/protection/fit-rating";
 import type { FitTestChange, FitTestInput } from "../../shared/schemas/fit";
 import type { ProblemIssue } from "../../shared/schemas/problem";
@@ -12,6 +11,8 @@ import type { FitTest } from "../models/fit";
 import { Site } from "../models/site";
 import type { Worker } from "../models/worker";
 import { protectorPolicy } from "../policies";
+import { barsAtDesk } from "../queries/barred";
+import { barCode } from "./bar-code";
 import { followFits } from "./follow-fits";
 import { markDaysStale } from "./mark-days-stale";
 
@@ -24,7 +25,7 @@ type ActivePassed = boolean | null;
  * A fit test of a worker and a model: a head and its first revision, tried until an issue names it. The worker's row is
  * locked. The worker's days from that date on are computed anew.
  *
- * @throws AppError not-found, or invalid.
+ * @throws AppError not-found, or invalid, as where it is not to be worn with what the worker wears beside it.
  */
 export async function recordFitTest(
   actor: Actor,
@@ -185,6 +186,8 @@ async function check(
     issues.push(issue(["testedOn"], "before-hire", { hiredOn: worker.hiredOn }));
   if (worker.leftOn !== null && testedOn > worker.leftOn)
     issues.push(issue(["testedOn"], "after-leaving", { leftOn: worker.leftOn }));
+  const { trial } = await barsAtDesk(actor, worker, modelId);
+  if (trial) issues.push(issue(["modelId"], barCode(trial)));
   if (issues.length > 0) throw unprocessable(issues);
 }
 
@@ -208,20 +211,17 @@ async function sizeIssues(
 /**
  * What the trials come to, the weaker ear governing; nothing where only the active part was checked.
  *
- * @throws AppError invalid, where an ear is said to have more than the skull lets be reached.
+ * @throws AppError invalid, where a trial is said to have more than the skull lets be reached.
  */
 function ratingOf({ facts, confidencePct, needDb }: Statement, activePassed: ActivePassed) {
   const { leftDb, rightDb, methodSdDb } = facts;
   if (leftDb.length + rightDb.length === 0 && activePassed !== null) return NOT_RATED;
   const { rating, refusal } = fitRating({ leftDb, rightDb, methodSdDb, confidencePct, needDb });
   if (refusal) {
-    const { code, foundDb, limitDb } = refusal;
-    const ear = arithmeticMean(leftDb) === foundDb ? "leftDb" : "rightDb";
-    throw unprocessable([
-      foundDb === null || limitDb === null
-        ? issue(["facts", ear], code)
-        : issue(["facts", ear], code, { foundDb, limitDb }),
-    ]);
+    if (refusal.code === "no-trial")
+      throw unprocessable([issue(["facts", "leftDb"], refusal.code)]);
+    const { code, ear, ...params } = refusal;
+    throw unprocessable([issue(["facts", ear === "left" ? "leftDb" : "rightDb"], code, params)]);
   }
   return {
     leftDb: rating.left?.parDb ?? null,

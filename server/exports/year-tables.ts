@@ -14,6 +14,7 @@ import {
   siteOfEvent,
   workerPolicy,
 } from "../policies";
+import { pairPassed } from "../queries/own-attenuation";
 import { YEAR_COLUMNS, type YearColumn } from "./year-columns";
 
 export type WorkersAs = "number" | "name" | "pseudonym";
@@ -303,7 +304,7 @@ export function yearTables(actor: Actor, asked: YearRecords): YearTable[] {
         level("right_db", "v.right_db", "Personal attenuation, right ear"),
         level("par_db", "v.par_db", "Personal attenuation rating"),
         level("need_db", "v.need_db", "What was needed"),
-        yesNo("has_passed", "v.has_passed", "Passed"),
+        yesNo("has_passed", pairPassed("v"), "Passed"),
       ],
       rest: `FROM fit_tests t JOIN fit_test_revisions v ON v.fit_test_id = t.id JOIN workers w ON w.id = t.worker_id JOIN protector_models m ON m.id = t.model_id
         WHERE t.site_id = '${siteId}' AND ${inYear("t.tested_on")} AND ${visible(fitTestPolicy, actor, "t")} ORDER BY t.tested_on, t.id, v.number`,

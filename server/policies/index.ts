@@ -456,6 +456,26 @@ export const erasurePolicy = policy<AtSite & { state: string; proposedBy: string
   },
 });
 
+/**
+ * Handing a site's records over takes two people too. Only an officer takes the file: an administrator reads no exposure by
+ * being one.
+ */
+export const recordTransferPolicy = policy<AtSite & { state: string; proposedBy: string }>()({
+  sees: (actor, t) => [actor.at(`${t}.site_id`, "officer", "administrator")],
+  can: {
+    approve: (actor, { siteId, state, proposedBy }) =>
+      state === "proposed" &&
+      proposedBy !== actor.userId &&
+      actor.isAt(siteId, "officer", "administrator"),
+    withdraw: (actor, { siteId, state }) =>
+      (state === "proposed" || state === "approved") &&
+      actor.isAt(siteId, "officer", "administrator"),
+    take: (actor, { siteId, state }) => state === "approved" && actor.isAt(siteId, "officer"),
+    receive: (actor, { siteId, state }) =>
+      state === "approved" && actor.isAt(siteId, "officer", "administrator"),
+  },
+});
+
 /** Visitors' grants: who administers the site lets them in. */
 export const visitPolicy = policy<AtSite>()({
   sees: (actor, g) => [actor.at(`${g}.site_id`, "administrator")],
@@ -524,6 +544,7 @@ const tableOfSubject = {
   "hand-over": "hand_overs",
   "legal-hold": "legal_holds",
   erasure: "erasures",
+  "record-transfer": "record_transfers",
 };
 
 /** The site an event is about, by its subject. */
@@ -541,7 +562,7 @@ export const auditPolicy = policy<object>()({
     actor.at(siteOfEvent(e), "auditor"),
     actor.is("auditor") && `${e}.subject_kind = 'protector'`,
     actor.is("administrator") &&
-      `${e}.subject_kind IN ('user', 'site', 'group-mapping', 'organization', 'legal-hold', 'erasure')`,
+      `${e}.subject_kind IN ('user', 'site', 'group-mapping', 'organization', 'legal-hold', 'erasure', 'record-transfer')`,
     actor.visiting(siteOfEvent(e), `${e}.at`),
   ],
   can: {},

@@ -4,6 +4,7 @@ import type { FitDistribution } from "../../shared/schemas/fit";
 import { rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
 import { fitPolicy } from "../policies";
+import { ratesPair } from "./own-attenuation";
 
 type Row = z.infer<typeof FitDistribution>["rows"][number];
 type ModelFits = Omit<Row, "labelDb" | "labelMethod"> & { data: ProtectorFacts };
@@ -39,7 +40,7 @@ export async function fitDistribution(
        count(*)::int AS count, array_agg(t.par_db ORDER BY t.par_db) AS "parsDb", avg(t.par_db) AS "meanDb", stddev_samp(t.par_db) AS "sdDb"
      FROM (SELECT DISTINCT ON (f.worker_id, f.model_id) f.model_id, v.par_db, v.need_db, v.has_passed
            FROM fit_tests f JOIN fit_test_revisions v ON v.id = f.current_revision_id JOIN workers w ON w.id = f.worker_id
-           WHERE f.site_id = :siteId AND NOT f.is_void AND v.par_db IS NOT NULL AND (w.left_on IS NULL OR w.left_on >= current_date)
+           WHERE f.site_id = :siteId AND NOT f.is_void AND ${ratesPair("v")} AND (w.left_on IS NULL OR w.left_on >= current_date)
              AND ${visible(fitPolicy, actor, "f")}
            ORDER BY f.worker_id, f.model_id, f.tested_on DESC, f.created_at DESC) t
      JOIN protector_models m ON m.id = t.model_id

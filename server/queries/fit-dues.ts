@@ -1,3 +1,5 @@
+import { ratesPair } from "./own-attenuation";
+
 /**
  * SQL: when a fit has to be tested again by the policy of the site `s`, after a test of `testedOn`; null: the site
  * states nothing. Every argument is an SQL expression. Sooner after a fail, after the refit that followed one, and
@@ -34,7 +36,7 @@ export const fitDues = (condition: string, sites = "sites"): string =>
    CROSS JOIN LATERAL (
      SELECT max(x.tested_on) AS tested_on, array_agg(x.has_passed ORDER BY x.tested_on DESC, x.created_at DESC) AS passed
      FROM (SELECT f.tested_on, f.created_at, v.has_passed FROM fit_tests f JOIN fit_test_revisions v ON v.id = f.current_revision_id
-           WHERE f.worker_id = u.worker_id AND f.model_id = u.model_id AND NOT f.is_void AND v.par_db IS NOT NULL
+           WHERE f.worker_id = u.worker_id AND f.model_id = u.model_id AND NOT f.is_void AND ${ratesPair("v")}
            ORDER BY f.tested_on DESC, f.created_at DESC LIMIT 2) x) t
    CROSS JOIN LATERAL (
      SELECT max(n.issued_on) AS issued_on FROM protector_issues n

@@ -8,6 +8,7 @@ import { rows } from "../lib/db";
 import { type Actor, abilities, visible } from "../lib/policy";
 import { fitTestPolicy } from "../policies";
 import { dueAfterTest } from "./fit-dues";
+import { pairPassed, ratesPair } from "./own-attenuation";
 
 type Found = Omit<FitTestView, "can" | "labelLess7Db"> & {
   createdAt: string;
@@ -19,11 +20,11 @@ type Found = Omit<FitTestView, "can" | "labelLess7Db"> & {
 };
 
 /** The test that counts of a worker and a model: the latest that stands. */
-const isLatest = `NOT f.is_void AND v.par_db IS NOT NULL AND NOT EXISTS (
-  SELECT 1 FROM fit_tests x JOIN fit_test_revisions y ON y.id = x.current_revision_id AND y.par_db IS NOT NULL
+const isLatest = `NOT f.is_void AND ${ratesPair("v")} AND NOT EXISTS (
+  SELECT 1 FROM fit_tests x JOIN fit_test_revisions y ON y.id = x.current_revision_id AND ${ratesPair("y")}
   WHERE x.worker_id = f.worker_id AND x.model_id = f.model_id AND NOT x.is_void AND (x.tested_on, x.created_at) > (f.tested_on, f.created_at))`;
 
-const passedBefore = `(SELECT y.has_passed FROM fit_tests x JOIN fit_test_revisions y ON y.id = x.current_revision_id AND y.par_db IS NOT NULL
+const passedBefore = `(SELECT y.has_passed FROM fit_tests x JOIN fit_test_revisions y ON y.id = x.current_revision_id AND ${ratesPair("y")}
   WHERE x.worker_id = f.worker_id AND x.model_id = f.model_id AND NOT x.is_void AND (x.tested_on, x.created_at) < (f.tested_on, f.created_at)
   ORDER BY x.tested_on DESC, x.created_at DESC LIMIT 1)`;
 
@@ -35,7 +36,7 @@ const TODAY = "(now() AT TIME ZONE s.time_zone)::date";
 
 const SELECT_FIT_TESTS = `SELECT f.id, f.revision, f.site_id AS "siteId", f.worker_id AS "workerId", w.name AS "workerName", w.employee_number AS "employeeNumber",
     f.model_id AS "modelId", m.name AS "modelName", f.tested_on::text AS "testedOn", f.created_at::text AS "createdAt", v.method, v.size, v.facts, v.confidence_pct AS "confidencePct",
-    v.need_db AS "needDb", v.note, v.left_db AS "leftDb", v.right_db AS "rightDb", v.par_db AS "parDb", v.has_passed AS "hasPassed",
+    v.need_db AS "needDb", v.note, v.left_db AS "leftDb", v.right_db AS "rightDb", v.par_db AS "parDb", ${pairPassed("v")} AS "hasPassed",
     v.active_passed AS "activePassed", f.is_void AS "isVoid", u.name AS "authorName",
     CASE WHEN EXISTS (SELECT 1 FROM protector_issues i WHERE i.fit_test_id = f.id) OR ${isOut} THEN 'issued' ELSE 'tried' END AS outcome,
     ${TODAY}::text AS today, m.kind, (SELECT (r.data->>'usRatingDb')::float FROM protector_model_revisions r

@@ -34,6 +34,7 @@ export async function fittingDesk(actor: Actor, worker: Worker): Promise<Fitting
   const { policy, timeZone, ...facts } = only(await deskHead(worker.id));
   const today = todayAt(timeZone);
   const noise = await workerNoise(worker, today);
+  const { singles, pairs } = await deskChoice(actor, worker, noise, today);
   const tests = await listFitTests(actor, { workerId: worker.id, limit: LATEST_TESTS });
   const can = abilities(fitPolicy, actor, worker);
   return {
@@ -43,9 +44,8 @@ export async function fittingDesk(actor: Actor, worker: Worker): Promise<Fitting
     need: noise.need,
     policy,
     creditsActivePart: noise.creditsActivePart,
-    ...(await candidates(actor, worker, noise, today, [
-      ...new Set([...facts.wornGear, ...(await gearOf(noise.day))]),
-    ])),
+    candidates: singles,
+    pairs,
     tests: tests.rows,
     issued: await issuedTo(actor, worker.id),
     can: { test: can.test, issue: can.issue },
@@ -74,13 +74,13 @@ const gearOf = (day: DayInput | null): Promise<WornGear[]> =>
  * The register's single devices in the order of suitability for this worker's noise; and, where each of them leaves too
  * little, two together as far as the rule can say something of them.
  */
-async function candidates(
+export async function deskChoice(
   actor: Actor,
   worker: Worker,
   { governing, creditsActivePart, day, need }: WorkerNoise,
   date: string,
-  wornGear: readonly WornGear[],
-): Promise<Pick<FittingDesk, "candidates" | "pairs">> {
+): Promise<{ singles: Candidate[]; pairs: Candidate[] }> {
+  const wornGear = [...new Set([...worker.wornGear, ...(await gearOf(day))])];
   const offers = await offersAt(actor, worker.siteId, date);
   const noises =
     day && need.outsideDb !== null
@@ -117,7 +117,7 @@ async function candidates(
   const possible = singles.filter(({ excludedBy }) => excludedBy === null);
   const isTooLittle = possible.length > 0 && possible.every(({ word }) => word === "too-little");
   return {
-    candidates: singles,
+    singles,
     pairs: isTooLittle
       ? rank(await pairsOf(offers, date))
           .filter(({ excludedBy }) => excludedBy === null)

@@ -2,6 +2,17 @@
  * SQL: what is known of a protector on its wearer, on a date. Every argument is an SQL expression.
  */
 
+/** One ear alone was tried. `fit` is a revision's alias. */
+const isOneEar = (fit: string) => `num_nulls(${fit}.left_db, ${fit}.right_db) = 1`;
+
+/** Whether the pair passed; null: not known, or one ear alone reached the need and the other may be the weaker. */
+export const pairPassed = (fit: string): string =>
+  `CASE WHEN ${fit}.has_passed AND ${isOneEar(fit)} THEN NULL ELSE ${fit}.has_passed END`;
+
+/** A test that says something of the pair of ears: both were tried, or the one that was falls short of the need. */
+export const ratesPair = (fit: string): string =>
+  `(${fit}.par_db IS NOT NULL AND (NOT ${isOneEar(fit)} OR (${fit}.has_passed IS FALSE AND ${fit}.need_db > 0)))`;
+
 /** Tests of a worker and a model up to a date, the latest first; another size than the assigned one says nothing of it. */
 const testsOf = (worker: string, model: string, size: string, date: string, condition: string) =>
   `SELECT v.id FROM fit_tests f JOIN fit_test_revisions v ON v.id = f.current_revision_id
@@ -9,9 +20,9 @@ const testsOf = (worker: string, model: string, size: string, date: string, cond
      AND (${size} IS NULL OR v.size IS NULL OR v.size = ${size})
    ORDER BY f.tested_on DESC, f.created_at DESC LIMIT 1`;
 
-/** The revision of the fit test that counts: the latest, passed or not. */
+/** The revision of the fit test that counts: the latest of the pair of ears, passed or not. */
 export const fitInForce = (worker: string, model: string, size: string, date: string): string =>
-  `(${testsOf(worker, model, size, date, "v.par_db IS NOT NULL")})`;
+  `(${testsOf(worker, model, size, date, ratesPair("v"))})`;
 
 /** The revision that says whether the active part does its work on this worker. */
 export const activeCheckInForce = (

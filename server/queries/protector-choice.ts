@@ -2,6 +2,7 @@ import { lawAtEar } from "../../shared/acoustics/outside-criterion";
 import {
   ProtectorChoice,
   type RankedProtector,
+  type Wearer as WearerOf,
   type WornGear,
 } from "../../shared/acoustics/protection/choose-protector";
 import { noisesOf, wornMinOf } from "../../shared/acoustics/protection/noises";
@@ -22,7 +23,7 @@ import {
   pairsOf,
   requiredGear,
 } from "./register-offers";
-import { settingsInForce } from "./site-settings";
+import { type SettingsInForce, settingsInForce } from "./site-settings";
 
 /** Whose noise protectors are compared for. */
 export interface ChoiceSubject {
@@ -58,37 +59,16 @@ export async function protectorChoice(
   const settings = await settingsInForce(siteId, date);
   const { governing } = settings;
   const { adequacy, targetDb } = governing.protection;
-
-  const longestMin = subject.kind === "task" ? await longestNominalMin(subject.id) : null;
-  const minutes =
-    subject.kind === "task"
-      ? new Map([[subject.id, longestMin ?? ASSUMED_MIN]])
-      : await nominalMinutes(subject.id);
-  const tasks = (await gridTasks(siteId, date)).flatMap((task): TimedTask[] => {
-    const durationMin = minutes.get(task.id);
-    return durationMin === undefined ? [] : [bareTask(task, durationMin)];
-  });
-  // A task by itself was chosen because of its noise, whatever its level.
-  const noises = noisesOf(tasks, governing, { site: settings, mustWear: subject.kind === "task" });
-  const gear = await requiredGear(noises.map(({ taskId }) => taskId));
-  const singles = await offersAt(actor, siteId, date);
+  const { noises, gear, longestMin, singles, rank } = await choiceFor(
+    actor,
+    subject,
+    date,
+    settings,
+  );
   const pairs = await pairsOf(singles, date);
   const wearers = await wearersOf(actor, subject, date, governing.protection);
   const creditedModelIds = settings.creditsActivePart ? checkedOnAll(wearers) : undefined;
-  const rank = (offers: typeof singles): RankedProtector[] =>
-    new ProtectorChoice(
-      offers,
-      governing.protection,
-      lawAtEar(governing),
-      besideScaleDb(governing),
-    ).for({
-      noises,
-      personalTargetDb: null,
-      wornGear: gear,
-      wornMin: wornMinOf(noises),
-      fits: new Map(),
-      creditedModelIds,
-    });
+  const ofAll = { wornGear: gear, fits: new Map(), creditedModelIds };
   return {
     subject: { ...subject, siteName: site.name },
     date,
@@ -105,13 +85,48 @@ export async function protectorChoice(
     isDurationAssumed: subject.kind === "task" && longestMin === null,
     requiredGear: gear,
     creditsActivePart: settings.creditsActivePart,
-    singles: rank(singles),
-    pairs: rank(pairs)
+    singles: rank(singles, ofAll),
+    pairs: rank(pairs, ofAll)
       .filter(({ excludedBy }) => excludedBy?.code !== "no-data")
       .slice(0, MOST_PAIRS),
     wearers: wearers.slice(0, MOST_WEARERS),
     hasMoreWearers: wearers.length > MOST_WEARERS,
   };
+}
+
+/** The register at a site, and how it is ranked for what one or all of those wear who do this work. */
+export async function choiceFor(
+  actor: Actor,
+  subject: Pick<ChoiceSubject, "kind" | "id" | "siteId">,
+  date: string,
+  settings: SettingsInForce,
+) {
+  const { siteId } = subject;
+  const { governing } = settings;
+  const longestMin = subject.kind === "task" ? await longestNominalMin(subject.id) : null;
+  const minutes =
+    subject.kind === "task"
+      ? new Map([[subject.id, longestMin ?? ASSUMED_MIN]])
+      : await nominalMinutes(subject.id);
+  const tasks = (await gridTasks(siteId, date)).flatMap((task): TimedTask[] => {
+    const durationMin = minutes.get(task.id);
+    return durationMin === undefined ? [] : [bareTask(task, durationMin)];
+  });
+  // A task by itself was chosen because of its noise, whatever its level.
+  const noises = noisesOf(tasks, governing, { site: settings, mustWear: subject.kind === "task" });
+  const gear = await requiredGear(noises.map(({ taskId }) => taskId));
+  const singles = await offersAt(actor, siteId, date);
+  const rank = (
+    offers: typeof singles,
+    wearer: Pick<WearerOf, "wornGear" | "fits" | "creditedModelIds">,
+  ): RankedProtector[] =>
+    new ProtectorChoice(
+      offers,
+      governing.protection,
+      lawAtEar(governing),
+      besideScaleDb(governing),
+    ).for({ noises, personalTargetDb: null, wornMin: wornMinOf(noises), ...wearer });
+  return { noises, gear, longestMin, singles, rank };
 }
 
 /** What is credited for a group is what the verdict of each of them would rest on; more than are known prove nothing. */

@@ -16,7 +16,7 @@ import { rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
 import { protectorPolicy } from "../policies";
 import { PROTECTOR_COLUMNS, toProtector } from "./day-inputs";
-import { activeCheckInForce, combinationInForce } from "./own-attenuation";
+import { activeCheckInForce, combinationInForce, ratesPair } from "./own-attenuation";
 
 type OfferRow = Parameters<typeof toProtector>[0] & { stock: number | null };
 
@@ -88,7 +88,7 @@ export async function fitsOf(
     `SELECT DISTINCT ON (f.worker_id, f.model_id) f.worker_id AS "workerId", f.model_id AS "modelId", v.par_db AS "parDb",
        CASE WHEN v.need_db <= 0 THEN NULL ELSE v.has_passed END AS "hasPassed", v.need_db AS "needDb", f.tested_on::text AS "testedOn", v.facts
      FROM fit_tests f JOIN fit_test_revisions v ON v.id = f.current_revision_id
-     WHERE f.worker_id = ANY (CAST(:ids AS uuid[])) AND NOT f.is_void AND v.par_db IS NOT NULL AND f.tested_on <= :date
+     WHERE f.worker_id = ANY (CAST(:ids AS uuid[])) AND NOT f.is_void AND ${ratesPair("v")} AND f.tested_on <= :date
      ORDER BY f.worker_id, f.model_id, f.tested_on DESC, f.created_at DESC`,
     { ids: `{${workerIds.join(",")}}`, date },
   );

@@ -31,3 +31,13 @@ export async function settingsInForce(siteId: string, date: string): Promise<Set
   if (!found || !ruleSet) throw new AppError("not-computed", 409);
   return { ...found, ruleSetVersion: ruleSet.version, governing: ruleSet };
 }
+
+/** The same; null where the site had chosen no rules yet. */
+export async function rulesOn(siteId: string, date: string): Promise<SettingsInForce | null> {
+  try {
+    return await settingsInForce(siteId, date);
+  } catch (error) {
+    if (error instanceof AppError && error.code === "not-computed") return null;
+    throw error;
+  }
+}

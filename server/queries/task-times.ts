@@ -3,10 +3,9 @@ import { longestStay } from "../../shared/day/longest-stay";
 import type { TaskTimes } from "../../shared/schemas/own-record";
 import { todayAt } from "../lib/calendar";
 import { row, rows } from "../lib/db";
-import { AppError } from "../lib/errors";
 import type { Worker } from "../models/worker";
 import { usualContext } from "./expected-days";
-import { type SettingsInForce, settingsInForce } from "./site-settings";
+import { rulesOn } from "./site-settings";
 
 interface NominalTask {
   taskId: string;
@@ -98,14 +97,4 @@ export async function taskTimes(worker: Worker): Promise<TaskTimes> {
       return [{ taskId, taskName: name, allowedMin, isWorn, measuredOn }];
     }),
   };
-}
-
-/** Null where the site had chosen no rules yet. */
-async function rulesOn(siteId: string, date: string): Promise<SettingsInForce | null> {
-  try {
-    return await settingsInForce(siteId, date);
-  } catch (error) {
-    if (error instanceof AppError && error.code === "not-computed") return null;
-    throw error;
-  }
 }

@@ -16,7 +16,7 @@ import type { WorkerTraining } from "../../shared/schemas/training";
 import type { AssignmentView, HistoryPage } from "../../shared/schemas/worker";
 import { decidedBy, otherOutside, outsideVerdict } from "../../shared/words/day-words";
 import { letterStateNote, letterStateWord } from "../../shared/words/letter-words";
-import { passWord } from "../../shared/words/register-words";
+import { oneEarWord, passWord } from "../../shared/words/register-words";
 import type { Actor } from "../lib/policy";
 import { listAssignments } from "../queries/assignments";
 import { listFitTests } from "../queries/fit-tests";
@@ -292,7 +292,7 @@ function fitTests(i18n: I18n, locale: Locale, fits: readonly FitTestView[]): Blo
           ? i18n.t("Struck")
           : fit.parDb === null
             ? i18n.t("Not measured")
-            : passWord(i18n, fit),
+            : [passWord(i18n, fit), oneEarWord(i18n, fit)].filter(Boolean).join(", "),
       ]),
     },
   ];

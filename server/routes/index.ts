@@ -41,6 +41,7 @@ import { defineProtectorChoiceRoutes } from "./protector-choice";
 import { defineProtectorCombinationRoutes } from "./protector-combinations";
 import { defineProtectorFileRoutes } from "./protector-files";
 import { defineProtectorRoutes } from "./protectors";
+import { defineRecordTransferRoutes } from "./record-transfers";
 import { defineRecordingRoutes } from "./recordings";
 import { defineReportRoutes } from "./reports";
 import { defineRetentionRoutes } from "./retention";
@@ -113,6 +114,7 @@ export function defineRoutes(config: Config<"web">): void {
   defineProtectorRoutes();
   defineRecordingRoutes();
   defineRetentionRoutes();
+  defineRecordTransferRoutes();
   defineEmployerRoutes();
   defineRosterRoutes();
   defineRuleSetRoutes();

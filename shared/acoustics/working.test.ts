@@ -51,6 +51,11 @@ describe.each(ENGINE_VECTORS)("working of $name", (vector) => {
     }
   });
 
+  test("nothing is cited that has no words", () => {
+    const cited = workingOf(vector).steps.flatMap(({ sources }) => sources);
+    expect(cited.filter(({ id, clause }) => id === null && clause === "")).toEqual([]);
+  });
+
   test("a result at hand gives the same working as one computed again", () => {
     const again = buildWorking(
       vector.day,

@@ -7,6 +7,7 @@ import { isSameFigure, outsideCriterion } from "./outside-criterion";
 import { evaluateAtEar } from "./protection/at-ear";
 import { audioLaw, withAudioAtEndDb } from "./protection/programme-audio";
 import { wornShareLevelDb } from "./protection/wearing-time";
+import type { SourceId } from "./sources";
 import type {
   AttenuationMethod,
   Criterion,
@@ -1675,14 +1676,17 @@ const COVERS = {
   part: text(/*i18n*/ "a part"),
 } as const;
 
-const METHOD_SOURCES: Readonly<Record<AttenuationMethod, WorkingSource>> = {
+/** Each method has a document: none may be without. */
+const METHOD_SOURCES: Readonly<
+  Record<AttenuationMethod, WorkingSource & { readonly id: SourceId }>
+> = {
   "octave-band": { id: "iso-4869-2", clause: "6" },
   hml: { id: "iso-4869-2", clause: "7" },
   snr: { id: "iso-4869-2", clause: "8" },
   "us-single-number": { id: "osha-1910.95", clause: /*i18n*/ "App. B" },
   percentile: { id: "ansi-s12.68", clause: "6" },
   slc80: { id: "as-nzs-1270", clause: /*i18n*/ "App. A" },
-  "own-fit": { id: null, clause: "" },
+  "own-fit": { id: "iso-guide-98-3", clause: "4.2, 5.1" },
 };
 
 /** The test a verdict rests on, with the numbers put in: level, comparator, value, and with the uncertainty. */

@@ -50,6 +50,24 @@ function formatText(i18n: I18n, format: unknown): string {
   }
 }
 
+function impossibleTrialText(i18n: I18n, { ear, trial, foundDb, limitDb }: FieldIssue["params"]) {
+  const locale = localeOf(i18n);
+  const values = {
+    trial: Number(trial),
+    found: formatLevel(Number(foundDb), locale),
+    limit: formatLevel(Number(limitDb), locale),
+  };
+  return ear === "left"
+    ? i18n.t(
+        "Left ear, trial {trial}: {found} dB is more than an ear can have. Above {limit} dB sound comes through the skull (bone conduction, JASA 114, 2003, from memory). Look at that trial again.",
+        values,
+      )
+    : i18n.t(
+        "Right ear, trial {trial}: {found} dB is more than an ear can have. Above {limit} dB sound comes through the skull (bone conduction, JASA 114, 2003, from memory). Look at that trial again.",
+        values,
+      );
+}
+
 function figuresOf(i18n: I18n, { foundDb, offDb }: FieldIssue["params"]) {
   const locale = localeOf(i18n);
   return {
@@ -154,6 +172,8 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("H, M and L belong together: all three, or none.");
     case "delay-too-long":
       return i18n.t("A canceller’s delay is at most a tenth of a second, 100 000 µs.");
+    case "battery-too-long":
+      return i18n.t("A battery lasts at most 166 h.");
     case "deviation-negative":
       return i18n.t("A standard deviation can’t be negative: type it without the minus.");
     case "too-many-bands":
@@ -340,6 +360,14 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("The rules of this site have no such criterion.");
     case "reading-empty":
       return i18n.t("This row says nothing yet. Type a figure, or take the row out.");
+    case "not-sha256":
+      return i18n.t("A SHA-256 is 64 digits and letters from a to f.");
+    case "sha256-not-handed-out":
+      return i18n.t(
+        "No file that was handed out has this SHA-256. Let the successor count it again over the file they hold, or hand it out anew.",
+      );
+    case "signed-before-handed-out":
+      return i18n.t("The file went out later than that.");
     case "signed-before-written":
       return i18n.t("The letter was written later than that.");
     case "in-the-future":
@@ -415,11 +443,17 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
     case "run-of-other-instrument":
       return i18n.t("That run was made with another instrument.");
     case "above-bone-conduction":
-      return i18n.t("More than the skull lets anybody have: this was not measured so.");
+      return impossibleTrialText(i18n, issue.params);
     case "no-trial":
       return i18n.t("At least one trial of one ear is needed.");
     case "size-unknown":
       return i18n.t("This protector does not come in that size.");
+    case "not-with-gear":
+      return i18n.t("It can’t be worn with what is worn beside it. Take another.");
+    case "no-data-no-fit":
+      return i18n.t(
+        "Its data say nothing of this noise. Test the fit first: it goes out once that reaches what is needed.",
+      );
     case "one-kind-offered":
       return i18n.t("Only one kind was on offer. Offer another, or say why not.");
     case "none-in-stock":

@@ -107,6 +107,57 @@ export const RETENTION: Readonly<Record<string, readonly RetentionPeriod[]>> = {
   ],
 };
 
+/** What becomes of records whose employer ends or sells a site. */
+export const SUCCESSION_KINDS = ["hand-over", "receive", "tell-workers"] as const;
+export type SuccessionKind = (typeof SUCCESSION_KINDS)[number];
+
+export interface SuccessionDuty {
+  /** To hand over and, for whoever follows, to keep on; where nobody follows, to tell workers of their right of access. */
+  readonly kind: SuccessionKind;
+  /** At least so many months before the end; null: the text sets no time. */
+  readonly monthsBefore: number | null;
+  readonly citation: string;
+  readonly sourceStatus: "read" | "from-memory";
+}
+
+const GENERAL_SUCCESSION: readonly SuccessionDuty[] = [
+  {
+    kind: "receive",
+    monthsBefore: null,
+    citation: "29 CFR 1910.1020(h)(1)",
+    sourceStatus: "from-memory",
+  },
+  {
+    kind: "tell-workers",
+    monthsBefore: 3,
+    citation: "29 CFR 1910.1020(h)(2)",
+    sourceStatus: "from-memory",
+  },
+];
+
+/** By rule set. One that is not here says nothing of it that the program knows of; records can be handed over all the same. */
+export const SUCCESSION: Readonly<Record<string, readonly SuccessionDuty[]>> = {
+  "us-general-industry": [
+    {
+      kind: "hand-over",
+      monthsBefore: null,
+      citation: "29 CFR 1910.95(m)(5)",
+      sourceStatus: "from-memory",
+    },
+    ...GENERAL_SUCCESSION,
+  ],
+  // By 29 CFR 1926.33, as the term of keeping.
+  "us-construction": GENERAL_SUCCESSION,
+  "us-mining": [
+    {
+      kind: "hand-over",
+      monthsBefore: null,
+      citation: "30 CFR 62.190(c)",
+      sourceStatus: "from-memory",
+    },
+  ],
+};
+
 export interface KeptFacts {
   /** ISO date. */
   readonly leftOn: string;

@@ -95,6 +95,7 @@ export const Attenuation = as<BandAttenuation>()(
 
 /** No canceller is this late, s. */
 const MOST_DELAY_S = 0.1;
+const MOST_BATTERY_MIN = 10_000;
 
 export const Active = as<ActivePart>()(
   z.object({
@@ -109,7 +110,14 @@ export const Active = as<ActivePart>()(
     maximumDb: z.number().min(0).max(60).nullable(),
     bandwidthHz: z.number().min(50).max(16_000).nullable(),
     saturatesAboveDb: z.number().min(60).max(140).nullable(),
-    batteryMin: z.number().min(0).max(10_000).nullable(),
+    // It is typed in hours.
+    batteryMin: z
+      .number()
+      .min(0)
+      .refine((batteryMin) => batteryMin <= MOST_BATTERY_MIN, {
+        params: { code: "battery-too-long" },
+      })
+      .nullable(),
   }),
 );
 

@@ -1,5 +1,6 @@
 import type { I18n } from "@lingui/core";
-import { hasToPass } from "../acoustics/protection/fit-rating";
+import type { Bar } from "../acoustics/protection/barred";
+import { earNotTried, hasToPass } from "../acoustics/protection/fit-rating";
 import type {
   Grade,
   InstrumentClass,
@@ -39,14 +40,25 @@ export function protectorKindWord(i18n: I18n, kind: ProtectorKind): string {
   }
 }
 
-/** Whether a fit passed what the noise asks for; where that is not known, or nothing, this is said. */
+/** Whether a fit passed what the noise asks for; where that is not known, or nothing, or one ear was not tried, this is said. */
 export function passWord(
   i18n: I18n,
   { hasPassed, needDb }: { hasPassed: boolean | null; needDb: number | null },
 ): string {
   if (needDb !== null && !hasToPass(needDb)) return i18n.t("Nothing to pass");
-  if (hasPassed === null) return i18n.t("Need not known");
+  if (hasPassed === null)
+    return needDb === null ? i18n.t("Need not known") : i18n.t("Not assessed");
   return hasPassed ? i18n.t("Fits") : i18n.t("Does not fit");
+}
+
+/** Of a test of one ear alone, which; null: both were tried, or none was rated. */
+export function oneEarWord(
+  i18n: I18n,
+  ears: { readonly leftDb: number | null; readonly rightDb: number | null },
+): string | null {
+  const notTried = earNotTried(ears);
+  if (notTried === null) return null;
+  return notTried === "left" ? i18n.t("right ear only") : i18n.t("left ear only");
 }
 
 export function gearWord(i18n: I18n, gear: Gear): string {
@@ -58,6 +70,43 @@ export function gearWord(i18n: I18n, gear: Gear): string {
     case "respirator":
       return i18n.t("respirator");
   }
+}
+
+/**
+ * Whether an own fit passed, of which part: a rating is of the passive one, and where the word while worn is of the
+ * active part on, the two judge different things.
+ */
+export function ownFitWord(
+  i18n: I18n,
+  { hasPassed, needDb }: { hasPassed: boolean | null; needDb: number | null },
+  isActiveCredited: boolean,
+): string {
+  const isJudged = hasPassed !== null && (needDb === null || hasToPass(needDb));
+  if (!isActiveCredited || !isJudged) return passWord(i18n, { hasPassed, needDb });
+  return hasPassed
+    ? i18n.t("Fits with the active part off")
+    : i18n.t("Does not fit with the active part off");
+}
+
+/** Why a device is out of the question. */
+export function exclusionWord(i18n: I18n, { code, gear }: Bar): string {
+  switch (code) {
+    case "gear":
+      return gear === null
+        ? i18n.t("not with what is worn beside it")
+        : i18n.t("not with {gear}", { gear: gearWord(i18n, gear) });
+    case "no-data":
+      return i18n.t("its data say nothing of this noise");
+    case "archived":
+      return i18n.t("no longer in use");
+  }
+}
+
+/** What stands in the place of a way to hand a device out that is out of the question. */
+export function barWord(i18n: I18n, bar: Bar): string {
+  return bar.code === "no-data"
+    ? i18n.t("goes out only on a passed fit: its data say nothing of this noise")
+    : exclusionWord(i18n, bar);
 }
 
 /** "helmet, glasses"; null: none. */

@@ -23,6 +23,7 @@ function BandForm({ onSave }: { onSave: (value: unknown) => void }) {
           { key: "meanDb", label: "Mean" },
           { key: "sdDb", label: "Deviation" },
         ]}
+        thirds="centre"
       />
       <SubmitButton>Save</SubmitButton>
     </Form>
@@ -87,4 +88,25 @@ test("what can't be read stays as typed and is named", async () => {
   expect(screen.getByText("8000 Hz: This is not a number.")).toBeVisible();
   expect(cell("Deviation, 8000 Hz")).toHaveValue("drei");
   expect(onSave).not.toHaveBeenCalled();
+});
+
+test("an empty cell keeps its place, and what was left out or refused is said", async () => {
+  show();
+  await paste("Mean, 500 Hz", "\t10\t14\t\t30\t32\t36\t");
+  expect(cell("Mean, 63 Hz")).toHaveValue("");
+  expect(cell("Mean, 125 Hz")).toHaveValue("10");
+  expect(cell("Mean, 500 Hz")).toHaveValue("");
+  expect(cell("Mean, 4000 Hz")).toHaveValue("36");
+  expect(cell("Mean, 8000 Hz")).toHaveValue("");
+  await paste("Mean, 63 Hz", "3150\t4000\t6300\t8000\n31\t32\t33\t34");
+  expect(cell("Mean, 4000 Hz")).toHaveValue("32");
+  expect(screen.getByRole("status")).toHaveTextContent(/left out: 3150, 6300 Hz\.$/);
+  await paste("Mean, 63 Hz", "1 2 3 4 5 6 7 8 9");
+  expect(
+    screen.getByText(/^Nothing was taken: 9 cells were pasted, and 8 bands are left/),
+  ).toBeVisible();
+  expect(screen.getByRole("status")).toBeEmptyDOMElement();
+  expect(cell("Mean, 4000 Hz")).toHaveValue("32");
+  await userEvent.type(cell("Mean, 63 Hz"), "9");
+  expect(screen.queryByText(/^Nothing was taken/)).toBeNull();
 });

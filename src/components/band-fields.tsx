@@ -1,5 +1,5 @@
 import { useLingui } from "@lingui/react";
-import type { ReactNode } from "react";
+import { type ReactNode, useState } from "react";
 import {
   type FieldPath,
   type FieldValues,
@@ -10,9 +10,11 @@ import {
 import { OCTAVE_BANDS_HZ } from "../../shared/acoustics/types";
 import { useLocale } from "../lib/i18n";
 import { bandLabel } from "./band-picture";
+import { readWords, refusalWords } from "./band-words";
 import { Field } from "./form";
 import { NumberInput, type Typed } from "./number-input";
-import { readBands, readRow } from "./read-bands";
+import { readBands, type ThirdOctaves } from "./read-bands";
+import { Status } from "./status";
 
 export interface BandRow {
   /** Member of the value that holds this row; without it the value is the row itself. */
@@ -48,6 +50,7 @@ export function BandFields<Values extends FieldValues, Output>({
   note,
   isOptional = true,
   bandsHz = OCTAVE_BANDS_HZ,
+  thirds,
 }: {
   form: UseFormReturn<Values, unknown, Output>;
   name: FieldPath<Values>;
@@ -56,11 +59,15 @@ export function BandFields<Values extends FieldValues, Output>({
   note?: ReactNode;
   isOptional?: boolean;
   bandsHz?: readonly number[];
+  /** What becomes of third-octaves that are pasted. */
+  thirds: ThirdOctaves;
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const { field } = useController({ control: form.control, name });
   const stored = field.value as unknown;
+  /** What the last paste left out, or why nothing was taken of it. */
+  const [pasted, setPasted] = useState<{ word: string | null; isRefused: boolean } | null>(null);
   const rowValues = (row: BandRow): Typed[] => {
     const found: unknown = row.key === undefined ? stored : get(stored, row.key);
     return Array.isArray(found) ? (found as Typed[]) : emptyRow(bandsHz.length);
@@ -75,11 +82,15 @@ export function BandFields<Values extends FieldValues, Output>({
   }
 
   function paste(row: BandRow, band: number, text: string): boolean {
-    const read =
-      bandsHz === OCTAVE_BANDS_HZ
-        ? readBands(text, locale, band)
-        : readRow(text, locale, band, bandsHz.length);
-    if (!read) return false;
+    const found = readBands(text, locale, { at: band, bandsHz, thirds });
+    if (!found) return false;
+    const { read, refusal } = found;
+    setPasted(
+      refusal
+        ? { word: refusalWords(i18n, refusal), isRefused: true }
+        : { word: readWords(i18n, read), isRefused: false },
+    );
+    if (!read) return true;
     const values = [...rowValues(row)];
     values.splice(read.from, read.values.length, ...read.values);
     put(row, values);
@@ -112,6 +123,7 @@ export function BandFields<Values extends FieldValues, Output>({
       : (get(errors, `${name}.${row.key}`) as { message?: unknown }),
   );
   const messages = [
+    ...(pasted?.isRefused && pasted.word !== null ? [pasted.word] : []),
     ...[own, ...rowErrors].flatMap((error) =>
       typeof error?.message === "string" ? [error.message] : [],
     ),
@@ -145,12 +157,13 @@ export function BandFields<Values extends FieldValues, Output>({
                       }
                       aria-describedby={wires["aria-describedby"]}
                       value={rowValues(row)[band]}
-                      onValue={(value) =>
+                      onValue={(value) => {
+                        setPasted(null);
                         put(
                           row,
                           rowValues(row).map((before, at) => (at === band ? value : before)),
-                        )
-                      }
+                        );
+                      }}
                       onPaste={(event) => {
                         if (paste(row, band, event.clipboardData.getData("text")))
                           event.preventDefault();
@@ -162,6 +175,7 @@ export function BandFields<Values extends FieldValues, Output>({
               </div>
             </fieldset>
           ))}
+          <Status>{pasted?.isRefused ? null : pasted?.word}</Status>
         </div>
       )}
     </Field>

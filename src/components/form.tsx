@@ -25,6 +25,7 @@ import { formatShortDate, parseDate, parseTime } from "../../shared/format/date"
 import { parseDuration } from "../../shared/format/duration";
 import { fieldNumber, type Parsed, parseNumber } from "../../shared/format/number";
 import { type FieldIssue, issueText } from "../../shared/problems/issue-text";
+import { IsoDate } from "../../shared/schemas/common";
 import { ApiError, connectionEvents } from "../lib/api";
 import { useLocale } from "../lib/i18n";
 import { readTyped, useTypedKey, writeTyped } from "../lib/keep-typed";
@@ -456,7 +457,10 @@ export function DateField<Values extends FieldValues, Output>(props: FieldProps<
       kind="date"
       code="not-a-date"
       parse={(text) => orInvalid(parseDate(text, locale), text)}
-      write={(value: string) => (locale === "en" ? value : formatShortDate(value, locale))}
+      // What was typed before in another language may be kept as text that is no date.
+      write={(value: string) =>
+        locale !== "en" && IsoDate.safeParse(value).success ? formatShortDate(value, locale) : value
+      }
     />
   );
 }

@@ -11,6 +11,7 @@ import { roundTo } from "../../shared/format/number";
 import { findLevelDoubts, isSpectrum } from "../../shared/schemas/level-doubts";
 import { useLocale } from "../lib/i18n";
 import { BandFields } from "./band-fields";
+import { readWords, refusalWords } from "./band-words";
 import { TextButton } from "./link";
 import { readBands } from "./read-bands";
 import { Status } from "./status";
@@ -98,13 +99,22 @@ export function SpectrumField<Values extends FieldValues, Output>({
   async function take(file: File | undefined) {
     if (!file) return;
     const text = file.size > MOST_BYTES ? "" : await file.text();
-    const read = readBands(text.replace(/^\ufeff/, ""), locale);
+    // In a file a line end ends each line, the last one too.
+    const lines = text.replace(/^\ufeff/, "").replace(/\r?\n$/, "");
+    const found = readBands(lines, locale, { thirds: "sum" });
+    const read = found?.read;
     const values = [...(read?.from === 1 ? [null] : []), ...(read?.values ?? [])];
     const isWhole = isSpectrum(values);
     setFileWord(
-      isWhole
-        ? i18n.t("Read from {file}.", { file: file.name })
-        : i18n.t("{file} holds no levels of eight octave bands.", { file: file.name }),
+      [
+        isWhole
+          ? i18n.t("Read from {file}.", { file: file.name })
+          : i18n.t("{file} holds no levels of eight octave bands.", { file: file.name }),
+        found?.refusal && refusalWords(i18n, found.refusal),
+        isWhole && read && readWords(i18n, read),
+      ]
+        .filter(Boolean)
+        .join(" "),
     );
     if (isWhole) put(values);
   }
@@ -117,6 +127,7 @@ export function SpectrumField<Values extends FieldValues, Output>({
         name={name}
         label={label}
         rows={[{ label: i18n.t("Octave band level") }]}
+        thirds="sum"
         note={note}
       />
       <div className="spectrum-sums">

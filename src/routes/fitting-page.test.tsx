@@ -289,6 +289,59 @@ describe("the fitting desk", () => {
     expect(await screen.findByText("13.0 dB have to come off.")).toBeVisible();
   });
 
+  test("an unknown number clears the worker who stood here before, and stays as it was typed", async () => {
+    const user = userEvent.setup();
+    open(paths.fittingOf(worker));
+    expect(await screen.findByText("13.0 dB have to come off.")).toBeVisible();
+    await user.type(number(), "999{Enter}");
+    expect(await screen.findByText("Nobody here has this number or name.")).toBeVisible();
+    await waitFor(() => expect(screen.queryByText("13.0 dB have to come off.")).toBeNull());
+    expect(number()).toHaveValue("999");
+    expect(number()).toHaveAttribute("aria-invalid", "true");
+  });
+
+  test("why a reason is asked for is said of the device that goes out", async () => {
+    const user = userEvent.setup();
+    at = desk({
+      candidates: [
+        candidate(muff, "Fenmuff", "earmuff", { stock: 0 }),
+        candidate(plug, "Alder foam", "foam-plug"),
+      ],
+      tests: [
+        tested(
+          { leftDb: [20], rightDb: [18], methodSdDb: 3, bands: null },
+          { modelId: plug, modelName: "Alder foam" },
+        ),
+      ],
+    });
+    open(paths.fittingOf(worker));
+    await user.click(await screen.findByRole("button", { name: "Issue Alder foam" }));
+    const form = await screen.findByRole("form", { name: "Issue Alder foam" });
+    await user.type(within(form).getByLabelText("All the same, because"), "skin");
+    await user.click(within(form).getByLabelText("Fenmuff"));
+    expect(within(form).getByText("Only officers read this.")).toBeVisible();
+    expect(screen.queryByText(/in stock\. Only officers/)).toBeNull();
+  });
+
+  test("a device without data goes out only on a passed fit, one that can’t be worn is not even tried", async () => {
+    at = desk({
+      candidates: [
+        candidate(muff, "Fenmuff", "earmuff", { excludedBy: { code: "gear", gear: "helmet" } }),
+        candidate(plug, "Alder foam", "foam-plug", {
+          excludedBy: { code: "no-data", gear: null },
+          word: null,
+          wornDb: null,
+        }),
+      ],
+    });
+    open(paths.fittingOf(worker));
+    const form = await screen.findByRole("form", { name: "Test the fit" });
+    const device = within(form).getByLabelText("Device");
+    expect(within(device).getAllByRole("option")).toHaveLength(1);
+    expect(screen.getByText(/Alder foam goes out only on a passed fit/)).toBeVisible();
+    expect(screen.queryByRole("button", { name: /without a test/ })).toBeNull();
+  });
+
   test("a method brings its own uncertainty, marked as common practice, until one is typed", async () => {
     const user = userEvent.setup();
     open(paths.fittingOf(worker));

@@ -2,11 +2,13 @@ import { useLingui } from "@lingui/react";
 import { useInfiniteQuery, useQuery } from "@tanstack/react-query";
 import { useCallback, useEffect, useMemo, useRef, useState } from "react";
 import { useNavigate, useParams } from "react-router-dom";
-import { hasToPass } from "../../shared/acoustics/protection/fit-rating";
+import { barToIssue, barToTrial } from "../../shared/acoustics/protection/barred";
+import { earNotTried, hasToPass } from "../../shared/acoustics/protection/fit-rating";
 import { formatLevel, formatLimit } from "../../shared/format/level";
 import { ruleSetVersion } from "../../shared/rule-sets";
 import type { FitTestView, FittingDesk } from "../../shared/schemas/fit";
 import { localDate } from "../../shared/time/zone";
+import { barWord } from "../../shared/words/register-words";
 import { Button } from "../components/button";
 import { Empty } from "../components/empty";
 import { Failed } from "../components/failed";
@@ -54,6 +56,10 @@ export function Component() {
           onFound={(id) => {
             setSaid(null);
             void navigate(paths.fittingOf(id));
+          }}
+          onNobody={() => {
+            setSaid(null);
+            if (workerId !== undefined) void navigate(paths.fitting);
           }}
         />
         <p className="desk-said">
@@ -105,7 +111,15 @@ function AtDesk({
   const today = localDate(new Date(), timeZone);
   const form = useRef<FitFormHandle>(null);
   const issueAt = useRef<HTMLDivElement>(null);
-  const [chosenId, setChosenId] = useState(desk.candidates[0]?.modelId ?? "");
+  const [chosenId, setChosenId] = useState(
+    desk.candidates.find((candidate) => barToTrial(candidate) === null)?.modelId ?? "",
+  );
+  const barOf = (modelId: string) => {
+    const candidate = desk.candidates.find((one) => one.modelId === modelId);
+    return candidate ? barToIssue(candidate, desk.candidates) : null;
+  };
+  const chosen = desk.candidates.find(({ modelId }) => modelId === chosenId);
+  const chosenBar = barOf(chosenId);
   const isOut = ({ modelId, size }: FitTestView) =>
     desk.issued.some(
       (one) => one.modelId === modelId && (one.size === null || size === null || one.size === size),
@@ -120,9 +134,11 @@ function AtDesk({
   );
   const sizesOf = useCallback((modelId: string) => sizes.get(modelId) ?? [], [sizes]);
 
+  const isIssuing = toIssue !== null && can.issue && barOf(toIssue.modelId) === null;
+  // biome-ignore lint/correctness/useExhaustiveDependencies: another device to issue is another form
   useEffect(() => {
-    if (toIssue) issueAt.current?.querySelector<HTMLElement>("select, input, textarea")?.focus();
-  }, [toIssue]);
+    if (isIssuing) issueAt.current?.querySelector<HTMLElement>("select, input, textarea")?.focus();
+  }, [isIssuing, toIssue]);
 
   return (
     <div className="desk">
@@ -213,7 +229,7 @@ function AtDesk({
           )}
         </Section>
       </div>
-      {toIssue && can.issue && (
+      {isIssuing && (
         <Section
           title={i18n.t("Issue {protector}", {
             protector: [
@@ -263,7 +279,8 @@ function AtDesk({
             can.issue
               ? (fit) =>
                   !fit.isVoid &&
-                  fit.parDb !== null && (
+                  fit.parDb !== null &&
+                  barOf(fit.modelId) === null && (
                     <TextButton
                       aria-label={
                         isOut(fit)
@@ -279,13 +296,15 @@ function AtDesk({
           }
           empty={<Empty title={i18n.t("Nothing was tested on this worker yet.")} />}
         />
-        {can.issue && chosenId !== "" && !toIssue && (
+        {can.issue && chosen && !toIssue && (
           <p className="after-table">
-            <Button onClick={() => setToIssue({ modelId: chosenId, size: null, fit: null })}>
-              {i18n.t("Issue {protector} without a test", {
-                protector: desk.candidates.find(({ modelId }) => modelId === chosenId)?.name ?? "",
-              })}
-            </Button>
+            {chosenBar === null ? (
+              <Button onClick={() => setToIssue({ modelId: chosenId, size: null, fit: null })}>
+                {i18n.t("Issue {protector} without a test", { protector: chosen.name })}
+              </Button>
+            ) : (
+              `${chosen.name} ${barWord(i18n, chosenBar)}.`
+            )}
           </p>
         )}
       </Section>
@@ -321,6 +340,21 @@ function OnWhichFit({ device: { fit } }: { device: ToIssue }) {
   if (fit.needDb !== null && !hasToPass(fit.needDb))
     return (
       <p>{i18n.t("PAR {par} dB; nothing has to come off, so there is nothing to pass.", values)}</p>
+    );
+  const notTried = earNotTried(fit);
+  if (fit.hasPassed === null && fit.needDb !== null && notTried !== null)
+    return (
+      <p>
+        {notTried === "left"
+          ? i18n.t(
+              "PAR {par} dB at the right ear, {need} needed: not assessed while the left one is not measured.",
+              values,
+            )
+          : i18n.t(
+              "PAR {par} dB at the left ear, {need} needed: not assessed while the right one is not measured.",
+              values,
+            )}
+      </p>
     );
   if (fit.hasPassed === null)
     return <p>{i18n.t("PAR {par} dB; what is needed is not known.", values)}</p>;

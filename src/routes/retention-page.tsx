@@ -16,6 +16,8 @@ import { HoldForm, HoldsTable } from "../features/people/holds-table";
 import { retentionQueries } from "../features/people/retention-queries";
 import { kindWord, termWord } from "../features/people/retention-words";
 import { TermForm } from "../features/people/term-form";
+import { TransferForm } from "../features/people/transfer-form";
+import { SuccessionDuties, TransfersTable } from "../features/people/transfers-table";
 import { hasRole, useUser } from "../features/session/session";
 import { paths } from "../paths";
 import "../styles/people.css";
@@ -51,6 +53,18 @@ export function Component() {
               <p>
                 {i18n.t(
                   "One proposes, another approves. The program never erases whoever works here, is held, or is within the longest term.",
+                )}
+              </p>
+            </MarginNote>
+            <MarginNote title={i18n.t("When a site passes on")}>
+              <p>
+                {i18n.t(
+                  "The successor gets one ZIP: a year’s file for each year, complete, each of which can be checked by itself. It is done once they have signed for the very file that went out.",
+                )}
+              </p>
+              <p>
+                {i18n.t(
+                  "Nothing is erased by it, no term changes, and a hold does not prevent it.",
                 )}
               </p>
             </MarginNote>
@@ -105,6 +119,23 @@ export function Component() {
               />
             </>
           )}
+        </Section>
+        <Section id="transfers" title={i18n.t("Handing over to a successor")}>
+          <TransfersTable timeZone={zone} />
+          {site && (
+            <>
+              <h3 className="mt-4 mb-2">
+                {i18n.t("Hand the records of {site} over", { site: site.name })}
+              </h3>
+              <TransferForm
+                key={site.id}
+                siteId={site.id}
+                onProposed={() => setSaid(i18n.t("Proposed. Somebody else approves it."))}
+              />
+            </>
+          )}
+          <h3 className="mt-4 mb-2">{i18n.t("What rules ask of it")}</h3>
+          <SuccessionDuties />
         </Section>
         <Section id="terms" title={i18n.t("Terms")}>
           <Terms term={term.data} query={term} />

@@ -100,7 +100,7 @@ describe("what is stored of a fit test", () => {
     const task = await buildTask({ site });
     const days = [daysFromToday(-3), daysFromToday(-2), daysFromToday(-1)];
     for (const date of days) {
-      await buildDay(worker, date);
+      await buildDay(worker, date, { origin: "imported" });
       await buildShift(worker, { date, tasks: [{ taskId: task.id, durationMin: 480 }] });
     }
     const staleDays = async () =>
@@ -137,6 +137,12 @@ describe("what is refused", () => {
       "more than the skull lets through",
       { facts: { leftDb: [20], rightDb: [60], methodSdDb: 2 } },
       "facts.rightDb",
+      "above-bone-conduction",
+    ],
+    [
+      "one trial of that size among others",
+      { facts: { leftDb: [80, 24, 23], rightDb: [22], methodSdDb: 2 } },
+      "facts.leftDb",
       "above-bone-conduction",
     ],
   ])("%s", async (_, more, path, code) => {

@@ -492,6 +492,64 @@ describe("a fit test", () => {
     expect(listed).toMatchObject({ id: body.id, outcome: "issued" });
   });
 
+  test("one ear alone is not assessed and takes the place of no fit of both, unless it falls short", async () => {
+    const desk = await openDesk();
+    const { client, worker, muff } = desk;
+    const both = (await record(desk, fitBody(muff.id, { testedOn: daysFromToday(-1) }))).body;
+    const oneEar = { ...facts, leftDb: [], rightDb: [38, 39] };
+    const alone = await record(desk, fitBody(muff.id, { facts: oneEar }));
+    expect(alone.body).toMatchObject({ leftDb: null, hasPassed: null });
+    const own = async () =>
+      (await client.get(`/workers/${worker.id}/fitting`)).body.candidates.find(
+        ({ modelId }: Candidate) => modelId === muff.id,
+      ).lastFit;
+    expect(await own()).toMatchObject({ parDb: both.parDb, hasPassed: true });
+    const short = { ...facts, leftDb: [], rightDb: [8, 9] };
+    await record(desk, fitBody(muff.id, { facts: short }));
+    expect(await own()).toMatchObject({ hasPassed: false });
+  });
+
+  test("what can’t be worn with what is worn beside it is not tried", async () => {
+    const desk = await openDesk();
+    await select("UPDATE workers SET worn_gear = '{glasses}' WHERE id = $1", [desk.worker.id]);
+    const { organizationId } = desk.site;
+    const worksWith = { helmet: null, glasses: false, respirator: null };
+    const model = await buildProtector({ organizationId, data: { worksWith } });
+    const refused = await record(desk, fitBody(model.id));
+    expect(refused.body.issues).toMatchObject([{ path: ["modelId"], code: "not-with-gear" }]);
+    const out = await issue(desk, issueOf(model.id, [model.id, desk.plug.id]));
+    expect(out.body.issues).toContainEqual(
+      expect.objectContaining({ path: ["modelId"], code: "not-with-gear" }),
+    );
+  });
+
+  test("a device whose data say nothing of the noise is tried, and goes out only on a fit that passed", async () => {
+    const desk = await openDesk();
+    const { client, worker, plug, site } = desk;
+    const spectrum = [20, 20, 20, 20, 98, 20, 20, 20];
+    const task = await buildTask({ site, levelDb: 98, octaveBandsDb: spectrum });
+    const job = await buildJob({ site, tasks: [{ taskId: task.id, durationMin: 240 }] });
+    await select("UPDATE workers SET job_id = $2 WHERE id = $1", [worker.id, job.id]);
+    const { organizationId } = site;
+    await buildProtector({ organizationId, data: { snrDb: 20, usRatingDb: null } });
+    const bare = await buildProtector({ organizationId, data: { snrDb: null, usRatingDb: null } });
+    const give = () =>
+      client.post("/assignments/many", {
+        workerIds: [worker.id],
+        assignment: { innerModelId: bare.id, fromDate: today, taskId: task.id },
+      });
+    const issueBare = () => issue(desk, issueOf(bare.id, [bare.id, plug.id], { reason: "tried" }));
+    const code = "no-data-no-fit";
+    expect((await issueBare()).body.issues).toMatchObject([{ path: ["modelId"], code }]);
+    expect((await give()).body.issues).toMatchObject([{ path: ["workerIds", 0], code }]);
+    const failed = { ...facts, leftDb: [5], rightDb: [5] };
+    expect((await record(desk, fitBody(bare.id, { facts: failed }))).status).toBe(201);
+    expect((await issueBare()).body.issues).toMatchObject([{ path: ["modelId"], code }]);
+    await record(desk, fitBody(bare.id));
+    expect((await issueBare()).status).toBe(201);
+    expect((await give()).status).toBe(201);
+  });
+
   test("a correction is the next revision; who saw the earlier one is told; struck, it counts for nothing", async () => {
     const desk = await openDesk();
     const { body } = await record(desk, fitBody(desk.muff.id));

@@ -92,7 +92,7 @@ test("an active muff comes onto the register from its bands", async () => {
   await fillBands("Standard deviation", SD_DB);
   await form.getByLabel("It cancels noise electronically").check();
   await fillBands("Active attenuation", ACTIVE_DB);
-  await form.getByLabel("Battery lasts").fill("720");
+  await form.getByLabel("Battery lasts").fill("12");
   const from = form.getByLabel("Holds from");
   await from.fill(addDays(day, -1));
   await from.blur();

@@ -132,6 +132,8 @@ describe("what a device is credited", () => {
     expect(cancellationDb(1, 2 * Math.PI * 4000 * 250e-6)).toBeGreaterThan(100);
     const late = activeAttenuationDb({ ...ACTIVE, delayS: 250e-6 })!;
     expect(breakEvenHz(250e-6, 1)).toAgreeWithPrinted("667");
+    // Nothing is added to the wave: it breaks even nowhere, and adds no noise.
+    expect(breakEvenHz(250e-6, 0)).toBeNull();
     for (const band of [5, 6, 7]) expect(late[band]).toBeLessThanOrEqual(0);
   });
 

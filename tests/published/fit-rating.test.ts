@@ -51,6 +51,11 @@ describe("by ear: mean less z·√(s²/n + u²), one-sided (computed by hand; z 
       weakerEar: "left",
     });
   });
+
+  test("one ear alone can fail for the pair, but not pass for it", () => {
+    expect(rated({ rightDb: [], needDb: 16 }).hasPassed).toBeNull();
+    expect(rated({ rightDb: [], needDb: 40 }).hasPassed).toBe(false);
+  });
 });
 
 test.each([
@@ -69,12 +74,19 @@ describe("refused", () => {
     });
   });
 
-  test("more than the skull lets be reached, whatever its lower bound", () => {
-    const { refusal } = fitRating({ ...TRIALS, leftDb: [47, 48, 46], confidencePct: 98 });
-    expect(refusal).toEqual({
+  test.each([
+    [
+      "all three",
+      { leftDb: [47, 48, 46], confidencePct: 98 },
+      { ear: "left", trial: 1, foundDb: 47 },
+    ],
+    ["one that its mean hides", { leftDb: [80, 24, 23] }, { ear: "left", trial: 1, foundDb: 80 }],
+    ["of the right ear", { rightDb: [20, 21, 52] }, { ear: "right", trial: 3, foundDb: 52 }],
+  ] as const)("a trial beyond what the skull lets be reached: %s", (_, trials, found) => {
+    expect(fitRating({ ...TRIALS, ...trials }).refusal).toEqual({
       code: "above-bone-conduction",
-      foundDb: 47,
       limitDb: boneConductionLimitDb(),
+      ...found,
     });
   });
 

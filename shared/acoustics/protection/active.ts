@@ -27,14 +27,15 @@ export function breakEvenPhaseRad(gain: number): number | null {
 }
 
 /**
- * First frequency at which a delayed canceller breaks even, Hz. Null where it never does.
+ * First frequency at which a delayed canceller breaks even, Hz. Null where it never does, as at a gain of 0, which
+ * neither takes off nor adds.
  *
  * @source elliott-2001 two-wave cancellation
  */
 export function breakEvenHz(delayS: number, gain: number): number | null {
   const phaseRad = breakEvenPhaseRad(gain);
   if (phaseRad === null) return 0;
-  return delayS === 0 ? null : phaseRad / (2 * Math.PI * delayS);
+  return delayS === 0 || gain === 0 ? null : phaseRad / (2 * Math.PI * delayS);
 }
 
 /** Base-ten octave ratio G, and its half for the band edges. @source iec-61260-1 5.2 */

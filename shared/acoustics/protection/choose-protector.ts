@@ -219,7 +219,14 @@ export class ProtectorChoice {
       const judged = {
         atEar,
         fit,
-        excludedBy: exclusionOf(one, wearer, atEar),
+        excludedBy: exclusionOf(
+          one,
+          wearer,
+          // A fit that failed is known to be too little; what the device's data say of others is not known by it.
+          fit?.hasPassed === false
+            ? this.atEar(one, noises, null, isCredited, targetDb, scaleDb)
+            : atEar,
+        ),
         batteryLasts: batteryLasts(one.offer, wearer.wornMin),
       };
       if (judged.excludedBy === null && judged.atEar?.lowMarginDb === null) hasLower = false;

@@ -23,13 +23,13 @@ export interface FitRating {
   /** The personal attenuation of the weaker ear with the stated confidence, dB. */
   readonly parDb: number;
   readonly confidencePct: number;
-  /** One ear only was tried. */
+  /** One ear only was tried: its rating is the most that the pair can have. */
   readonly isOneEar: boolean;
   /** Some ear has a single trial, so that the spread between donnings is not in the uncertainty. */
   readonly hasSingleTrial: boolean;
-  /** Against what the noise asks for; null: no need is known, or nothing has to come off. */
+  /** Against what the noise asks for; null: no need is known, nothing has to come off, or one ear was not tried and may be the weaker. */
   readonly hasPassed: boolean | null;
-  /** By how far it passes the need, dB. */
+  /** By how far the ears that were tried pass the need, dB. */
   readonly marginDb: number | null;
 }
 
@@ -37,12 +37,17 @@ export type FitOutcome =
   | { readonly rating: FitRating; readonly refusal: null }
   | { readonly rating: null; readonly refusal: FitRefusal };
 
-export interface FitRefusal {
-  readonly code: "no-trial" | "above-bone-conduction";
-  /** What was found, and what an ear can have, dB. */
-  readonly foundDb: number | null;
-  readonly limitDb: number | null;
-}
+export type FitRefusal =
+  | { readonly code: "no-trial" }
+  | {
+      readonly code: "above-bone-conduction";
+      readonly ear: "left" | "right";
+      /** Which trial of that ear, from 1. */
+      readonly trial: number;
+      /** What it is said to have taken off, and what an ear can have, dB. */
+      readonly foundDb: number;
+      readonly limitDb: number;
+    };
 
 export interface FitTrials {
   /** Attenuation by trial, each after a donning of its own, dB. */
@@ -57,7 +62,7 @@ export interface FitTrials {
 /**
  * A worker's personal attenuation rating from trials at both ears: by ear the mean less z·u, one-sided, with
  * u² = s²/n + u_method² (a single trial has no s: then u_method alone, and the result says so). The weaker ear governs.
- * Refused where the mean of an ear lies above what the skull lets be reached.
+ * Refused where a single trial lies above what the skull lets be reached: a mean would hide it.
  *
  * @throws RangeError for a confidence not between 0 and 100.
  * @source iso-guide-98-3 4.2, 5.1
@@ -68,14 +73,15 @@ export function fitRating(trials: FitTrials): FitOutcome {
   const left = earRating(trials.leftDb, trials.methodSdDb, z);
   const right = earRating(trials.rightDb, trials.methodSdDb, z);
   const ears = [left, right].filter((ear) => ear !== null);
-  if (ears.length === 0) return refused("no-trial", null, null);
-  const limitDb = boneConductionLimitDb();
-  const highestDb = Math.max(...ears.map(({ meanDb }) => meanDb));
-  if (highestDb > limitDb) return refused("above-bone-conduction", highestDb, limitDb);
+  if (ears.length === 0) return { rating: null, refusal: { code: "no-trial" } };
+  const refusal =
+    impossibleTrial("left", trials.leftDb) ?? impossibleTrial("right", trials.rightDb);
+  if (refusal) return { rating: null, refusal };
   const isLeftWeaker = right === null || (left !== null && left.parDb <= right.parDb);
   const parDb = Math.min(...ears.map((ear) => ear.parDb));
   const { confidencePct } = trials;
-  const hasPassed = passesNeed(parDb, trials.needDb);
+  const isOneEar = ears.length === 1;
+  const hasPassed = pairPasses(parDb, trials.needDb, isOneEar);
   return {
     rating: {
       left,
@@ -83,13 +89,25 @@ export function fitRating(trials: FitTrials): FitOutcome {
       weakerEar: isLeftWeaker ? "left" : "right",
       parDb,
       confidencePct,
-      isOneEar: ears.length === 1,
+      isOneEar,
       hasSingleTrial: ears.some(({ betweenTrialsDb }) => betweenTrialsDb === null),
       hasPassed,
       marginDb: hasToPass(trials.needDb) ? parDb - trials.needDb : null,
     },
     refusal: null,
   };
+}
+
+/** The ear that a test has no rating of; null: both were tried, or it rates none. Both in dB. */
+export function earNotTried({
+  leftDb,
+  rightDb,
+}: {
+  readonly leftDb: number | null;
+  readonly rightDb: number | null;
+}): "left" | "right" | null {
+  if ((leftDb === null) === (rightDb === null)) return null;
+  return leftDb === null ? "left" : "right";
 }
 
 /** Where nothing has to come off, any fit would do: that is no passing. */
@@ -99,12 +117,18 @@ export const hasToPass = (needDb: number | null): needDb is number => needDb !==
 export const passesNeed = (parDb: number, needDb: number | null): boolean | null =>
   hasToPass(needDb) ? parDb >= needDb : null;
 
-function refused(
-  code: FitRefusal["code"],
-  foundDb: number | null,
-  limitDb: number | null,
-): FitOutcome {
-  return { rating: null, refusal: { code, foundDb, limitDb } };
+/** One ear that falls short settles it for both; one that reaches the need says nothing of the other. */
+function pairPasses(parDb: number, needDb: number | null, isOneEar: boolean): boolean | null {
+  const passes = passesNeed(parDb, needDb);
+  return isOneEar && passes ? null : passes;
+}
+
+/** The first trial of an ear that nobody’s skull allows; null: none. */
+function impossibleTrial(ear: "left" | "right", trialsDb: readonly number[]): FitRefusal | null {
+  const limitDb = boneConductionLimitDb();
+  const at = trialsDb.findIndex((db) => db > limitDb);
+  if (at < 0) return null;
+  return { code: "above-bone-conduction", ear, trial: at + 1, foundDb: trialsDb[at]!, limitDb };
 }
 
 function earRating(trialsDb: readonly number[], methodSdDb: number, z: number): EarRating | null {

@@ -248,6 +248,7 @@ function endWords(
   { delayS, gain, bandwidthHz, attenuationDb }: ActivePart,
   locale: Locale,
 ): string {
+  if (attenuationDb === null && gain === 0) return i18n.t("at gain 0 the active part does nothing");
   const hz = (value: number) => formatNumber(value, 0, locale);
   const evenHz =
     attenuationDb === null && delayS !== null && gain !== null ? breakEvenHz(delayS, gain) : null;

@@ -1,9 +1,11 @@
 import { fireEvent, render, screen, within } from "@testing-library/react";
 import { MemoryRouter } from "react-router-dom";
-import { expect, test } from "vitest";
+import { expect, test, vi } from "vitest";
+import { OCTAVE_BANDS_HZ } from "../../../shared/acoustics/types";
 import { AtEarView, type MethodRow } from "../../../shared/schemas/at-ear";
 import { TestLanguage, testI18n } from "../../lib/test-i18n";
 import { ActiveInNoise, whichCounts } from "./active-in-noise";
+import { BandLevels } from "./band-levels";
 import { DelayGain } from "./delay-gain";
 import { MethodsTable, SpreadLine } from "./methods-table";
 import { batteryOf, NominalDays } from "./nominal-days";
@@ -170,6 +172,62 @@ test("delay and gain are pushed or typed, and what can’t be read changes nothi
   fireEvent.click(screen.getByRole("button", { name: "Back to the start" }));
   expect(field.value).toBe("50");
 });
+
+test("at gain 0 the part does nothing, and is not said to add noise", () => {
+  const seen = view();
+  show(<DelayGain view={seen} active={seen.inner.active!} />);
+  const field = screen.getByRole<HTMLInputElement>("textbox", { name: "Gain, typed" });
+  fireEvent.change(field, { target: { value: "0" } });
+  expect(screen.getByText(/^At gain 0 the active part does nothing/)).toBeTruthy();
+  expect(screen.queryByText(/breaks even at|would take|louder/)).toBeNull();
+  expect(document.querySelector(".at-ear-even")).toBeNull();
+});
+
+test("what a stored gain of 0 credits ends nowhere, for it does nothing", () => {
+  const seen = view();
+  const active = { ...seen.inner.active!, attenuationDb: null, delayS: 0.0001, gain: 0 };
+  show(<ActiveInNoise view={seen} active={active} />);
+  expect(screen.getByText("at gain 0 the active part does nothing")).toBeTruthy();
+});
+
+test.each([300, 340, 460])(
+  "at %i px no figure of added noise lies on a bar or on another",
+  (px) => {
+    vi.stubGlobal(
+      "ResizeObserver",
+      class {
+        constructor(readonly callback: (entries: object[]) => void) {}
+        observe() {
+          this.callback([{ contentRect: { width: px } }]);
+        }
+        disconnect() {}
+      },
+    );
+    const bands = OCTAVE_BANDS_HZ.map((frequencyHz) => ({
+      frequencyHz,
+      outsideDb: 110,
+      passiveDb: 80,
+      activeDb: 90,
+      outsideADb: 110,
+      passiveADb: 80,
+      activeADb: 90,
+      gainDb: -10,
+      addsNoise: true,
+    }));
+    show(<BandLevels bands={bands} title="Bands" />);
+    vi.unstubAllGlobals();
+    const of = (element: Element, name: string) => Number(element.getAttribute(name));
+    const figures = [...document.querySelectorAll(".at-ear-added-figure")];
+    const highest = Math.min(...[...document.querySelectorAll("rect")].map((bar) => of(bar, "y")));
+    expect(figures).toHaveLength(8);
+    for (const figure of figures) expect(of(figure, "y")).toBeLessThan(highest - 3);
+    // "+10.0" is under 40 px wide; a figure after the next stands on its line again.
+    for (const [at, figure] of figures.entries())
+      for (const other of figures.slice(at + 1))
+        if (of(figure, "y") === of(other, "y"))
+          expect(of(other, "x") - of(figure, "x")).toBeGreaterThan(40);
+  },
+);
 
 test("a programme adds by energy to what is left of the noise", () => {
   show(<Programme view={view()} />);

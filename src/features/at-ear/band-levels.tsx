@@ -8,17 +8,21 @@ import { useWidth } from "./use-width";
 
 const LEFT = 30;
 const RIGHT = 4;
-const TOP = 16;
+/** Room for two lines of figures over the scale, where no bar reaches. */
+const TOP = 34;
+const LINE = 14;
 const BOTTOM = 24;
-const HEIGHT = 260;
+const HEIGHT = 278;
 const LOW_DB = 20;
 const HIGH_DB = 110;
 
 /**
  * A noise by octave band, A-weighted: outside (tick above), under cup or plug (the bar's foot), and with the active part
  * (ring). The bar falls from the one to the other as a strip's does; a ring above its foot is noise that was added, and
- * an upright with its figure says so. On one scale, widened by whole tens where a level lies beyond it.
+ * an upright says so, with its figure over the scale: beside it the next band's bar is too near on a phone. On one scale, widened by whole tens where a level lies beyond it.
  */
+const placeOf = (hz: number) => OCTAVE_BANDS_HZ.indexOf(hz as (typeof OCTAVE_BANDS_HZ)[number]);
+
 export function BandLevels({ bands, title }: { bands: readonly ActiveChartBand[]; title: string }) {
   const { i18n } = useLingui();
   const locale = useLocale();
@@ -33,8 +37,7 @@ export function BandLevels({ bands, title }: { bands: readonly ActiveChartBand[]
   const perDb = (HEIGHT - TOP - BOTTOM) / (highDb - lowDb);
   const y = (db: number) => TOP + (highDb - db) * perDb;
   const step = (widthPx - LEFT - RIGHT) / OCTAVE_BANDS_HZ.length;
-  const xOf = (hz: number) =>
-    LEFT + (OCTAVE_BANDS_HZ.indexOf(hz as (typeof OCTAVE_BANDS_HZ)[number]) + 0.5) * step;
+  const xOf = (hz: number) => LEFT + (placeOf(hz) + 0.5) * step;
   const half = Math.min(11, step * 0.3);
   const guides = Array.from(
     { length: Math.round((highDb - lowDb) / 10) + 1 },
@@ -90,8 +93,9 @@ export function BandLevels({ bands, title }: { bands: readonly ActiveChartBand[]
                   />
                   <text
                     className="at-ear-added-figure"
-                    x={Math.min(x + half + 8, widthPx - 26)}
-                    y={y(activeADb) - 6}
+                    textAnchor="middle"
+                    x={Math.min(x, widthPx - 22)}
+                    y={placeOf(frequencyHz) % 2 === 0 ? LINE : 2 * LINE}
                   >
                     {`+${formatLevel(-gainDb, locale)}`}
                   </text>
@@ -103,7 +107,7 @@ export function BandLevels({ bands, title }: { bands: readonly ActiveChartBand[]
       </svg>
       <p className="picture-legend">
         {i18n.t(
-          "Thin tick: outside. Thick tick: under cup or plug. Ring: with the active part on; an upright with a figure: what it adds there. A-weighted, dB; Hz beneath.",
+          "Thin tick: outside. Thick tick: under cup or plug. Ring: with the active part on; upright, and the figure at the top of its band: what it adds there. A-weighted, dB; Hz beneath.",
         )}
       </p>
     </div>

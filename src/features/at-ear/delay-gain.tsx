@@ -73,7 +73,15 @@ export function DelayGain({ view, active }: { view: AtEarView; active: ActivePar
         </p>
       </div>
       <p className="delay-gain-says">
-        <OutcomeWords outcome={outcome} taskName={view.task.name} />
+        {tried.gain === 0 ? (
+          <b>
+            {i18n.t(
+              "At gain 0 the active part does nothing: it takes nothing off and adds nothing.",
+            )}
+          </b>
+        ) : (
+          <OutcomeWords outcome={outcome} taskName={view.task.name} />
+        )}
       </p>
       <div className="delay-gain-pictures">
         <CurvePicture outcome={outcome} />

@@ -2,15 +2,16 @@ import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { useState } from "react";
 import { z } from "zod";
+import { type Bar, barToIssue } from "../../../shared/acoustics/protection/barred";
 import { formatLevel } from "../../../shared/format/level";
 import {
   GivingPreview,
   type ProtectorChoiceView,
   type Wearer,
 } from "../../../shared/schemas/choice";
-import type { Candidate, Gear } from "../../../shared/schemas/fit";
+import type { Candidate } from "../../../shared/schemas/fit";
 import type { ManyAssignmentsInput } from "../../../shared/schemas/worker";
-import { gearWord, passWord } from "../../../shared/words/register-words";
+import { barWord, ownFitWord } from "../../../shared/words/register-words";
 import { useChangePreview } from "../../components/change-preview";
 import { DataTable } from "../../components/data-table";
 import { Empty } from "../../components/empty";
@@ -56,7 +57,7 @@ export function GiveForm({
   } | null>(null);
   /** In the order in which the server names them. */
   const [sent, setSent] = useState<readonly string[]>([]);
-  const conflictOf = useGearConflict(candidate);
+  const barTo = useBar(choice, candidate);
   const form = useSchemaForm(GiveFields, {
     keepAs: `${candidate.modelId} ${candidate.outerModelId ?? ""}`,
     defaultValues: {
@@ -78,7 +79,7 @@ export function GiveForm({
   const chosen = form.watch("workerIds").filter((id) => !holders.has(id));
   const choose = (workerIds: string[]) =>
     form.setValue("workerIds", workerIds, { shouldDirty: true, shouldValidate: chosen.length > 0 });
-  const free = wearers.filter((wearer) => conflictOf(wearer) === null && !holders.has(wearer.id));
+  const free = wearers.filter((wearer) => barTo(wearer) === null && !holders.has(wearer.id));
   const { errors } = form.formState;
   const issueOf = (workerId: string): string | undefined => {
     const index = sent.indexOf(workerId);
@@ -215,13 +216,13 @@ export function GiveForm({
             isRowHead: true,
             sortValue: ({ name }) => name,
             cell: (wearer) => {
-              const conflict = conflictOf(wearer);
+              const bar = barTo(wearer);
               return (
                 <label className="choice">
                   <input
                     type="checkbox"
                     checked={chosen.includes(wearer.id)}
-                    disabled={conflict !== null || holders.has(wearer.id)}
+                    disabled={bar !== null || holders.has(wearer.id)}
                     onChange={(event) =>
                       choose(
                         event.target.checked
@@ -235,9 +236,9 @@ export function GiveForm({
                     <span className="beneath">
                       {holders.has(wearer.id)
                         ? i18n.t("has it already")
-                        : conflict === null
+                        : bar === null
                           ? [wearer.employeeNumber, wearer.crewName].filter(Boolean).join(", ")
-                          : i18n.t("not with {gear}", { gear: gearWord(i18n, conflict) })}
+                          : barWord(i18n, bar)}
                     </span>
                     {issueOf(wearer.id) && (
                       <span className="field-error">{issueOf(wearer.id)}</span>
@@ -263,7 +264,7 @@ export function GiveForm({
                 <span className="two-lines">
                   <span className="mono">{formatLevel(fit.parDb, locale)}</span>
                   <span className={fit.hasPassed === false ? "is-fault" : "beneath"}>
-                    {passWord(i18n, fit)}
+                    {ownFitWord(i18n, fit, candidate.isActiveCredited)}
                   </span>
                   {checkedModelIds.includes(candidate.modelId) && (
                     <span className="beneath">{i18n.t("active part passed")}</span>
@@ -306,12 +307,22 @@ export function GiveForm({
   );
 }
 
-/** What a worker wears that the device, or one of two, isn't to be worn with. */
-function useGearConflict({ modelId, outerModelId }: Candidate): (wearer: Wearer) => Gear | null {
+/** Why a worker can't be given the device: it isn't to be worn with what they wear, or nothing is known of it in this noise. */
+function useBar(
+  { singles, pairs }: ProtectorChoiceView,
+  candidate: Candidate,
+): (wearer: Wearer) => Bar | null {
+  const { modelId, outerModelId } = candidate;
   const protectors = useQuery(references.protectors());
   const worksWith = (protectors.data?.rows ?? [])
     .filter(({ id }) => id === modelId || id === outerModelId)
     .map(({ data }) => data.worksWith);
-  return ({ wornGear }) =>
-    wornGear.find((gear) => worksWith.some((works) => works[gear] === false)) ?? null;
+  const all = [...singles, ...pairs];
+  return ({ wornGear, fits }) => {
+    const gear = wornGear.find((worn) => worksWith.some((works) => works[worn] === false));
+    if (gear) return { code: "gear", gear };
+    const fit = outerModelId === null ? fits.find((one) => one.modelId === modelId) : undefined;
+    const lastFit = fit ? { ...fit, testedOn: "" } : null;
+    return barToIssue({ ...candidate, lastFit }, all);
+  };
 }

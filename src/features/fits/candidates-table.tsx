@@ -3,14 +3,14 @@ import { formatDuration } from "../../../shared/format/duration";
 import { formatLevel, formatLevelChange } from "../../../shared/format/level";
 import { withinSentence } from "../../../shared/format/words";
 import type { Candidate } from "../../../shared/schemas/fit";
-import { passWord } from "../../../shared/words/register-words";
+import { exclusionWord, ownFitWord } from "../../../shared/words/register-words";
 import { Button } from "../../components/button";
 import { type DataColumn, DataTable } from "../../components/data-table";
 import { Empty } from "../../components/empty";
 import { TextButton } from "../../components/link";
 import { ProtectorWord, protectorWordText } from "../../components/protector-word";
 import { useLocale } from "../../lib/i18n";
-import { type ActiveCredit, decidedWord, exclusionWord, judgedByWord } from "./fit-words";
+import { type ActiveCredit, decidedWord, judgedByWord } from "./fit-words";
 
 /** A device, or two of them, among candidates. */
 export const candidateKey = ({
@@ -131,7 +131,7 @@ export function CandidatesTable({
     {
       id: "fit",
       head: i18n.t("Own fit"),
-      cell: ({ lastFit, labelLess7Db }) =>
+      cell: ({ lastFit, labelLess7Db, isActiveCredited }) =>
         lastFit === null ? (
           labelLess7Db === null ? (
             "–"
@@ -144,7 +144,7 @@ export function CandidatesTable({
           <span className="two-lines">
             <span className="mono">{formatLevel(lastFit.parDb, locale)}</span>
             <span className={lastFit.hasPassed === false ? "is-fault" : "beneath"}>
-              {passWord(i18n, lastFit)}
+              {ownFitWord(i18n, lastFit, isActiveCredited)}
             </span>
             {labelLess7Db !== null && (
               <span className="beneath wide:whitespace-nowrap">{less7(labelLess7Db)}</span>

@@ -1,8 +1,10 @@
 import { useLingui } from "@lingui/react";
 import { type Ref, useEffect, useImperativeHandle, useRef } from "react";
 import { z } from "zod";
+import { barToTrial } from "../../../shared/acoustics/protection/barred";
 import { formatLevel } from "../../../shared/format/level";
 import type { Candidate, FitTestView, FittingDesk } from "../../../shared/schemas/fit";
+import { exclusionWord } from "../../../shared/words/register-words";
 import {
   Form,
   FormActions,
@@ -22,7 +24,7 @@ import { useOneAtATime } from "../../lib/one-at-a-time";
 import { DESK_METHODS, FitFields, factsOf, numbersIn } from "./fit-fields";
 import { showFitIssuesOn } from "./fit-issues";
 import { FitRatingLine } from "./fit-rating-line";
-import { exclusionWord, fitMethodWord, judgedDb } from "./fit-words";
+import { fitMethodWord, judgedDb } from "./fit-words";
 import { METHOD_SD_DB } from "./method-sd";
 import { useRecordFitTest } from "./queries";
 import { TrialCells } from "./trial-cells";
@@ -66,11 +68,12 @@ export function FitForm({
   const { begin, end } = useOneAtATime();
   const { needDb } = desk.need;
   const { confidencePct } = desk.policy;
+  const triable = desk.candidates.filter((candidate) => barToTrial(candidate) === null);
   const form = useSchemaForm(DeskFields, {
     mode: "onSubmit",
     keepAs: "fit",
     defaultValues: {
-      modelId: desk.candidates[0]?.modelId ?? "",
+      modelId: triable[0]?.modelId ?? "",
       size: null,
       method: "psychophysical",
       methodSdDb: METHOD_SD_DB.psychophysical,
@@ -156,7 +159,7 @@ export function FitForm({
         form={form}
         name="modelId"
         label={i18n.t("Device")}
-        choices={desk.candidates.map((candidate, place) => ({
+        choices={triable.map((candidate, place) => ({
           value: candidate.modelId,
           label: label(candidate, place),
         }))}

@@ -1,6 +1,7 @@
 import { useLingui } from "@lingui/react";
 import { fitRating, hasToPass } from "../../../shared/acoustics/protection/fit-rating";
 import { formatLevel } from "../../../shared/format/level";
+import { issueText } from "../../../shared/problems/issue-text";
 import { passWord } from "../../../shared/words/register-words";
 import { Status } from "../../components/status";
 import { useLocale } from "../../lib/i18n";
@@ -27,18 +28,14 @@ export function FitRatingLine({
   const locale = useLocale();
   const uprightDb = hasToPass(needDb) ? needDb : null;
   const { rating, refusal } = fitRating({ leftDb, rightDb, methodSdDb, confidencePct, needDb });
-  if (refusal?.code === "above-bone-conduction")
+  if (refusal?.code === "above-bone-conduction") {
+    const { code, ...params } = refusal;
     return (
       <p className="field-error" role="alert">
-        {i18n.t(
-          "{found} dB is more than an ear can have: above {limit} dB sound comes through the skull. Look at the trials again.",
-          {
-            found: formatLevel(refusal.foundDb, locale),
-            limit: formatLevel(refusal.limitDb, locale),
-          },
-        )}
+        {issueText(i18n, { code, params })}
       </p>
     );
+  }
   if (!rating)
     return (
       <div className="fit-rating">
@@ -78,6 +75,13 @@ export function FitRatingLine({
             ? i18n.t("Needed {need}.", { need: formatLevel(needDb, locale) })
             : i18n.t("Nothing has to come off, so there is nothing to pass."))}
       </p>
+      {isOneEar && hasToPass(needDb) && hasPassed === null && (
+        <p className="field-note">
+          {weakerEar === "left"
+            ? i18n.t("The weaker ear decides: measure the right one too before it can pass.")
+            : i18n.t("The weaker ear decides: measure the left one too before it can pass.")}
+        </p>
+      )}
       <LabelLess7 db={labelLess7Db} />
       <FitScale ticksDb={ears} uprightDb={uprightDb} />
       {hasSingleTrial && (

@@ -4,6 +4,7 @@ import { hasToPass } from "../../../shared/acoustics/protection/fit-rating";
 import { formatShortDate } from "../../../shared/format/date";
 import { formatLevel } from "../../../shared/format/level";
 import type { FitTestView } from "../../../shared/schemas/fit";
+import { oneEarWord } from "../../../shared/words/register-words";
 import { type DataColumn, DataTable, type DataTableProps } from "../../components/data-table";
 import { TextButton, TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
@@ -124,6 +125,7 @@ export function FitTestsTable({
           </span>
           <span className="beneath">
             {[
+              oneEarWord(i18n, test),
               outcomeWord(i18n, test),
               test.activePassed !== null && test.parDb !== null && activeWord(i18n, test),
               test.dueOn !== null &&

@@ -8,7 +8,7 @@ import type {
   IssueView,
   RefusalInput,
 } from "../../../shared/schemas/fit";
-import { gearWord, passWord } from "../../../shared/words/register-words";
+import { passWord } from "../../../shared/words/register-words";
 
 export function fitMethodWord(i18n: I18n, method: FitMethod): string {
   switch (method) {
@@ -84,23 +84,6 @@ export function labelWord(i18n: I18n, method: string | null): string {
       return i18n.t("SNR");
     default:
       return i18n.t("nothing comparable");
-  }
-}
-
-/** Why a device is out of the question. */
-export function exclusionWord(
-  i18n: I18n,
-  { code, gear }: NonNullable<Candidate["excludedBy"]>,
-): string {
-  switch (code) {
-    case "gear":
-      return gear === null
-        ? i18n.t("not with what is worn beside it")
-        : i18n.t("not with {gear}", { gear: gearWord(i18n, gear) });
-    case "no-data":
-      return i18n.t("its data say nothing of this noise");
-    case "archived":
-      return i18n.t("no longer in use");
   }
 }
 

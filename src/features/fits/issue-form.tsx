@@ -1,6 +1,6 @@
 import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
-import { useMemo } from "react";
+import { useMemo, useState } from "react";
 import { useController } from "react-hook-form";
 import { z } from "zod";
 import { Reason } from "../../../shared/schemas/common";
@@ -23,6 +23,7 @@ import {
   useSchemaForm,
 } from "../../components/form";
 import { FormProblem } from "../../components/form-problem";
+import { ApiError } from "../../lib/api";
 import { useChangeKey } from "../../lib/change-key";
 import { useOneAtATime } from "../../lib/one-at-a-time";
 import { references } from "../../lib/references";
@@ -116,8 +117,16 @@ export function IssueForm({
   const offered = form.watch("offeredModelIds");
   const asked = askedFor(desk.candidates, device.modelId, offered);
   const stock = candidate?.stock ?? null;
-  // The server counts the stock by size; once it has asked, the field stays for what is typed.
-  const hasAsked = form.formState.errors.reason !== undefined || form.watch("reason") !== "";
+  // The server counts the stock by size; once a reason was asked for, the field stays for what is typed.
+  const [askedByServer, setAskedByServer] = useState<string | null>(null);
+  const hasAsked = askedByServer !== null || form.watch("reason") !== "";
+  const why = asked ?? askedByServer;
+  const name = [
+    candidate?.name ?? "",
+    device.size !== null && i18n.t("size {size}", { size: device.size }),
+  ]
+    .filter(Boolean)
+    .join(", ");
   const uses = [
     { value: EVERYWHERE, label: i18n.t("everywhere in noise") },
     ...(areas.data?.rows ?? [])
@@ -156,6 +165,7 @@ export function IssueForm({
             onSuccess: (view) => onIssued(view, stock === null ? null : stock - 1),
             onError: (error) => {
               end();
+              setAskedByServer(reasonIssue(error));
               showFitIssuesOn(form, i18n)(error);
             },
           },
@@ -183,9 +193,13 @@ export function IssueForm({
           label={i18n.t("All the same, because")}
           rows={2}
           note={
-            asked === "one-kind-offered"
+            why === "one-kind-offered"
               ? i18n.t("Only one kind is on offer. Only officers read this.")
-              : i18n.t("None is in stock. Only officers read this.")
+              : why === "none-in-stock"
+                ? i18n.t("None of {protector} is in stock. Only officers read this.", {
+                    protector: name,
+                  })
+                : i18n.t("Only officers read this.")
           }
         />
       )}
@@ -198,6 +212,10 @@ export function IssueForm({
     </Form>
   );
 }
+
+/** Why the server asks for a reason; null: it doesn't. */
+const reasonIssue = (error: unknown): string | null =>
+  (error instanceof ApiError && error.issues.find(({ path }) => path === "reason")?.code) || null;
 
 /** More than one kind has to be on offer: what was laid out on the desk. */
 function OfferedField({

@@ -15,9 +15,12 @@ export interface NumberFormHandle {
 /** Who stands at the desk: typed or scanned, Enter, and on. A name finds too, and asks which one is meant. */
 export function NumberForm({
   onFound,
+  onNobody,
   ref,
 }: {
   onFound: (workerId: string) => void;
+  /** The number or name means nobody, or more than one: whoever stood here before is not meant. */
+  onNobody: () => void;
   ref: Ref<NumberFormHandle>;
 }) {
   const { i18n } = useLingui();
@@ -30,7 +33,11 @@ export function NumberForm({
     onSuccess: ({ rows }) => {
       const [only] = rows;
       if (only && rows.length === 1) choose(only.id);
-      else setFound(rows);
+      else {
+        setFound(rows);
+        onNobody();
+        input.current?.select();
+      }
     },
   });
   useImperativeHandle(ref, () => ({
@@ -68,6 +75,7 @@ export function NumberForm({
           // biome-ignore lint/a11y/noAutofocus: the page begins with it, and a scanner types at once
           autoFocus
           value={text}
+          aria-invalid={found?.length === 0 || undefined}
           aria-describedby={found ? `${id}-found` : undefined}
           onChange={(event) => {
             setText(event.target.value);

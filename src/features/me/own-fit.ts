@@ -1,11 +1,14 @@
 import type { I18n } from "@lingui/core";
-import { hasToPass } from "../../../shared/acoustics/protection/fit-rating";
+import { earNotTried, hasToPass } from "../../../shared/acoustics/protection/fit-rating";
 import { formatDate } from "../../../shared/format/date";
 import type { Locale } from "../../../shared/i18n/index";
 import type { FitTestView } from "../../../shared/schemas/fit";
 import type { OwnProtector } from "./own-protectors";
 
-/** The latest test of this protector that stands; another size says nothing of this one. */
+/**
+ * The latest test of this protector that stands; another size says nothing of this one, and one ear that passed nothing
+ * of the other.
+ */
 export function fitOfOwn(
   tests: readonly FitTestView[],
   { innerModelId, outerName, size }: OwnProtector,
@@ -17,6 +20,7 @@ export function fitOfOwn(
         test.modelId === innerModelId &&
         !test.isVoid &&
         test.parDb !== null &&
+        (earNotTried(test) === null || test.hasPassed === false) &&
         (size === null || test.size === null || test.size === size),
     ) ?? null
   );

@@ -281,6 +281,7 @@ function TypedBands({ form, hasActivePart }: { form: CheckForm; hasActivePart: b
           { key: "outsideOffDb", label: outside },
           { key: "insideOffDb", label: inside },
         ]}
+        thirds="sum"
       />
       {hasActivePart && (
         <BandFields
@@ -291,6 +292,7 @@ function TypedBands({ form, hasActivePart }: { form: CheckForm; hasActivePart: b
             { key: "outsideOnDb", label: outside },
             { key: "insideOnDb", label: inside },
           ]}
+          thirds="sum"
         />
       )}
     </>
@@ -354,6 +356,7 @@ function CorrectionChoice({ form, isOwn }: { form: CheckForm; isOwn: boolean }) 
             label={i18n.t("Added to the noise reduction")}
             isOptional={false}
             rows={[{ label: i18n.t("Correction") }]}
+            thirds="refuse"
           />
           <TextField form={form} name="source" label={i18n.t("Source")} />
         </>

@@ -104,7 +104,7 @@ export function KeepCheckForm({
               name="needDb"
               label={i18n.t("Needed at this worker’s place")}
               unit="dB"
-              note={i18n.t("What the fit has to reach. Empty: there is nothing to pass.")}
+              note={i18n.t("What the fit has to reach. Empty: as at the fitting desk.")}
               isOptional
             />
           )}

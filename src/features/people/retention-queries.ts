@@ -57,7 +57,7 @@ export const retentionQueries = {
 };
 
 /** One change at a time; the lists are asked anew after it. */
-function useRetentionChange<Input, View>(
+export function useRetentionChange<Input, View>(
   send: (input: Input) => Promise<View>,
   onDone: (view: View) => void,
 ) {

@@ -1,5 +1,6 @@
 import type { I18n } from "@lingui/core";
 import type { RetentionKind } from "../../../shared/rule-sets/retention";
+import type { SuccessionDutyView } from "../../../shared/schemas/record-transfer";
 import type { KeptBecause, PeriodView } from "../../../shared/schemas/retention";
 
 export function keptWord(i18n: I18n, because: KeptBecause): string {
@@ -55,4 +56,19 @@ export function termWord(i18n: I18n, { months, counts }: PeriodView): string {
         "{count, plural, one {# month after the last record} other {# months after the last record}}",
         { count },
       );
+}
+
+/** What a rule asks of whoever ends or sells a site. */
+export function successionWord(i18n: I18n, { kind, monthsBefore }: SuccessionDutyView): string {
+  switch (kind) {
+    case "hand-over":
+      return i18n.t("Hand the records over to the employer that follows.");
+    case "receive":
+      return i18n.t("Whoever follows receives the records and keeps them.");
+    case "tell-workers":
+      return i18n.t(
+        "Where nobody follows: tell workers of their right to see the records, at least {count, plural, one {# month} other {# months}} before the end.",
+        { count: monthsBefore ?? 0 },
+      );
+  }
 }

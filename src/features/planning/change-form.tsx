@@ -127,6 +127,7 @@ function NoiseForm({ subject, onAdd, onLeave }: PartProps) {
           name="bandsDb"
           label={i18n.t("or by octave band, dB")}
           rows={[{ label: i18n.t("Quieter by") }]}
+          thirds="refuse"
         />
       )}
       <Actions onLeave={onLeave} />

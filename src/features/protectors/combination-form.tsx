@@ -185,6 +185,7 @@ export function CombinationForm({
             { key: "meanDb", label: i18n.t("Mean attenuation") },
             { key: "sdDb", label: i18n.t("Standard deviation") },
           ]}
+          thirds="centre"
           note={i18n.t(
             "As tested on both at once: the sum of two single attenuations is more than anybody gets.",
           )}

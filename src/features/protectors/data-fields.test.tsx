@@ -232,6 +232,31 @@ test("a delay is typed in µs, and goes out in seconds", async () => {
   );
 }, 15_000);
 
+test("a battery is typed in hours, and goes out in minutes", async () => {
+  const active = {
+    attenuationDb: [12, 15, 18, 10, 2, 0, 0, 0],
+    delayS: null,
+    gain: null,
+    maximumDb: null,
+    bandwidthHz: 1000,
+    saturatesAboveDb: null,
+    batteryMin: 450,
+  };
+  const onSave = show({ kind: "active-earmuff", data: { active } });
+  const battery = cell(/^Battery lasts/);
+  expect((battery as HTMLInputElement).value).toBe("7.5");
+  await userEvent.clear(battery);
+  await userEvent.type(battery, "720");
+  await save();
+  expect(screen.getByText("A battery lasts at most 166 h.")).toBeTruthy();
+  await userEvent.clear(battery);
+  await userEvent.type(battery, "12.1");
+  await save();
+  expect(onSave).toHaveBeenCalledWith(
+    expect.objectContaining({ active: { ...active, batteryMin: 726 } }),
+  );
+}, 15_000);
+
 test("only what a kind can have is asked for", () => {
   show({ kind: "foam-plug" });
   expect(screen.queryByText("It cancels noise electronically")).toBeNull();

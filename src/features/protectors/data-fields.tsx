@@ -73,6 +73,7 @@ function ActiveFields({ form }: { form: ProtectorForm }) {
             name="data.active.attenuationDb"
             label={i18n.t("Active attenuation, dB")}
             rows={[{ label: i18n.t("Active attenuation") }]}
+            thirds="refuse"
             note={i18n.t(
               "From its own test report; negative where it adds noise. Without a report: delay and gain.",
             )}
@@ -118,7 +119,8 @@ function ActiveFields({ form }: { form: ProtectorForm }) {
             form={form}
             name="data.active.batteryMin"
             label={i18n.t("Battery lasts")}
-            unit="min"
+            unit="h"
+            factor={1 / 60}
             isOptional
           />
         </>
@@ -171,6 +173,7 @@ export function ProtectorDataFields({
           { key: "meanDb", label: i18n.t("Mean attenuation") },
           { key: "sdDb", label: i18n.t("Standard deviation") },
         ]}
+        thirds="centre"
         note={i18n.t(
           "63 Hz may stay empty, the others not. Eight values can be pasted into any cell.",
         )}
@@ -189,6 +192,7 @@ export function ProtectorDataFields({
             { key: "meanDb", label: i18n.t("Mean attenuation") },
             { key: "sdDb", label: i18n.t("Standard deviation") },
           ]}
+          thirds="centre"
           note={i18n.t(
             "All nine, with 3150 and 6300 Hz: without these two the US number can’t be recomputed.",
           )}

@@ -15,10 +15,10 @@ describe("subjects out of a spreadsheet", () => {
 
   test("each is known by its line, heads and empty lines counted", () => {
     const head = "63 125 250 500 1000 2000 4000 8000";
-    expect(linesOfSubjects(`${head}\n\n${eight.join(" ")}\r\n${eight.join(" ")}\n`)).toEqual([
+    expect(linesOfSubjects(`${head}\n\n${eight.join(" ")}\r\n${eight.join(" ")}\n`, "en")).toEqual([
       3, 4,
     ]);
-    expect(linesOfSubjects("")).toEqual([]);
+    expect(linesOfSubjects("", "en")).toEqual([]);
   });
 
   test("seven begin at 125 Hz", () => {
@@ -58,6 +58,14 @@ describe("subjects out of a spreadsheet", () => {
       [null, ...seven],
     ]);
     expect(read(eight, eight)).toEqual([eight, eight]);
+  });
+
+  test("an empty cell keeps its place, at the ends too", () => {
+    const line = [12, "", 19, 25, 28, 31, 34, ""];
+    expect(readSubjects(`${tabs(line)}\r\n${tabs(["", ...seven])}\r\n`, "en")).toEqual([
+      [12, null, 19, 25, 28, 31, 34, null],
+      [null, ...seven],
+    ]);
   });
 
   test("nothing is nobody", () => {

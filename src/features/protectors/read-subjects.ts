@@ -2,7 +2,7 @@ import { OCTAVE_BANDS_HZ } from "../../../shared/acoustics/types";
 import type { Locale } from "../../../shared/i18n/index";
 import { Unreadable } from "../../components/form";
 import type { Typed } from "../../components/number-input";
-import { cellsOf, isFrequency, readCell } from "../../components/read-bands";
+import { cellsOf, isBlank, isFrequency, readCell } from "../../components/read-bands";
 
 const COUNT = OCTAVE_BANDS_HZ.length;
 
@@ -13,15 +13,17 @@ const COUNT = OCTAVE_BANDS_HZ.length;
  * of eight with one left out the others would stand a band too high.
  */
 export function readSubjects(text: string, locale: Locale): Typed[][] {
-  const lines = cellsOf(text);
-  const rows = lines.filter((cells) => !isHead(cells));
+  const rows = cellsOf(text, locale).filter((cells) => !isBlank(cells) && !isHead(cells));
   const hasNames = rows.length > 0 && namesSubjects(rows, locale);
   const subjects = rows.map((row) => (hasNames ? row.slice(1) : row));
   const others = withOther63Hz(subjects);
   return subjects.map((cells) => {
     const from = cells.length === COUNT - 1 ? 1 : 0;
     const values = cells.slice(0, COUNT - from).map((cell) => readCell(cell, locale));
-    const beyond = cells.slice(COUNT - from).join(" ");
+    const beyond = cells
+      .slice(COUNT - from)
+      .filter(Boolean)
+      .join(" ");
     if (beyond !== "") values[values.length - 1] = new Unreadable("too-many-bands", beyond);
     const bands = OCTAVE_BANDS_HZ.map((_, band) => values[band - from] ?? null);
     if (others.has(cells)) bands[0] = new Unreadable(OTHER_63_HZ, from === 0 ? cells[0]! : "");
@@ -39,11 +41,10 @@ function withOther63Hz(subjects: readonly string[][]): ReadonlySet<string[]> {
 }
 
 /** On which line of the text each subject stands, from 1. */
-export function linesOfSubjects(text: string): number[] {
-  const filled = text
-    .split(/\r\n|\r|\n/)
-    .flatMap((line, at) => (line.trim() === "" ? [] : [at + 1]));
-  return cellsOf(text).flatMap((cells, at) => (isHead(cells) ? [] : [filled[at]!]));
+export function linesOfSubjects(text: string, locale: Locale): number[] {
+  return cellsOf(text, locale).flatMap((cells, at) =>
+    isBlank(cells) || isHead(cells) ? [] : [at + 1],
+  );
 }
 
 const isHead = (cells: readonly string[]): boolean =>

@@ -50,7 +50,7 @@ export function SubjectsField({ form }: { form: ProtectorForm }) {
   const isTaken = taken !== null && taken === JSON.stringify(bands);
   const isWritten = typed !== null && JSON.stringify(typed.value) === JSON.stringify(stored);
   const errors: unknown = get(form.formState.errors, "data.subjectsDb");
-  const lines = linesOfSubjects(isWritten ? typed.text : written);
+  const lines = linesOfSubjects(isWritten ? typed.text : written, locale);
   const whole = typedFacts({ subjectsDb: stored }).subjectsDb ?? null;
   const wholeCount = (stored ?? []).filter(isWhole).length;
 

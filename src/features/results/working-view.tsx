@@ -355,6 +355,7 @@ export function WorkingStepView({ step, children }: { step: WorkingStep; childre
   const tables = <Tables tables={step.tables} caption={title} />;
   const equations = <Equations equations={step.equations} />;
   const isUncertainty = step.shares.length > 0;
+  const sources = sourceTexts(i18n, step.sources);
   return (
     <section className="working-step" aria-labelledby={id}>
       <div className="working-main">
@@ -403,9 +404,9 @@ export function WorkingStepView({ step, children }: { step: WorkingStep; childre
         className="working-margin"
         aria-label={i18n.t("What step {number} rests on", { number: step.number })}
       >
-        {step.sources.length > 0 && (
+        {sources.length > 0 && (
           <p>
-            <b>{i18n.t("Source.")}</b> {sourceTexts(i18n, step.sources).join("; ")}.
+            <b>{i18n.t("Source.")}</b> {sources.join("; ")}.
           </p>
         )}
         {children}

@@ -130,6 +130,7 @@ function SignalFields({
         name="octaveBandsDb"
         label={i18n.t("Level by octave band")}
         rows={[{ label: i18n.t("Octave band level") }]}
+        thirds="sum"
         isOptional={false}
         note={
           isSpectrum(spectrum)

@@ -36,6 +36,7 @@ export const SUBJECT_KINDS = [
   "organization",
   "legal-hold",
   "erasure",
+  "record-transfer",
 ] as const;
 export type SubjectKind = (typeof SUBJECT_KINDS)[number];
 
@@ -58,6 +59,8 @@ export function subjectWord(i18n: I18n, kind: string): string {
       return i18n.t("Hold on records");
     case "erasure":
       return i18n.t("Erasure");
+    case "record-transfer":
+      return i18n.t("Records handed over");
     case "draw":
       return i18n.t("Drawn records");
     case "worker":
@@ -367,6 +370,18 @@ export function actionWord(i18n: I18n, action: string): string {
       return i18n.t("Person erased from the records");
     case "finish-erasure":
       return i18n.t("Erasure done");
+    case "propose-transfer":
+      return i18n.t("Handing over to a successor proposed");
+    case "approve-transfer":
+      return i18n.t("Handing over to a successor approved");
+    case "withdraw-transfer":
+      return i18n.t("Handing over to a successor withdrawn");
+    case "begin-transfer-file":
+      return i18n.t("File for the successor begun");
+    case "hand-out-transfer-file":
+      return i18n.t("File for the successor handed out whole");
+    case "receive-transfer":
+      return i18n.t("Successor’s receipt recorded");
     case "name-trail-keeper":
       return i18n.t("Keeper of the trail’s head named");
     case "send-trail-head":

@@ -4,6 +4,7 @@ import type { Locale } from "../../../shared/i18n";
 import type { YearReportPage } from "../../../shared/schemas/report";
 import type { GapKind, GapNames, GapsView } from "../../../shared/schemas/waiting";
 import { ApiError, api } from "../../lib/api";
+import { download } from "../../lib/download";
 import { ownReply } from "../../lib/own-reply";
 import { parseDictionary } from "./parse-dictionary";
 
@@ -94,15 +95,4 @@ export function downloadRecords(year: YearOfSite, workers: WorkersAs): void {
 /** The same as a workbook, a sheet for each table. */
 export function downloadWorkbook(year: YearOfSite, workers: WorkersAs): void {
   download([yearFileAddress(year, workers, "xlsx")]);
-}
-
-function download(addresses: readonly string[]): void {
-  for (const address of addresses) {
-    const link = document.createElement("a");
-    link.href = address;
-    link.download = "";
-    document.body.append(link);
-    link.click();
-    link.remove();
-  }
 }
