@@ -9,6 +9,7 @@ interface Person {
   name: string;
   roles: string[];
   granted?: boolean;
+  note: string;
 }
 
 const url = process.env.PUBLIC_URL ?? "http://127.0.0.1:4600";
@@ -17,10 +18,11 @@ const folder = "docs/pictures";
 mkdirSync(folder, { recursive: true });
 
 const people = (await (await fetch(`${issuer}/demo-people`)).json()) as Person[];
-const somebody = (role: string) => {
+const somebody = (role: string, site = "") => {
+  const there = people.filter(({ note }) => note.includes(site));
   const found =
-    people.find(({ roles }) => roles.length === 1 && roles[0] === role) ??
-    people.find(({ roles }) => roles.includes(role));
+    there.find(({ roles }) => roles.length === 1 && roles[0] === role) ??
+    there.find(({ roles }) => roles.includes(role));
   if (!found) throw new Error(`the demo has no ${role}`);
   return found.name;
 };
@@ -28,6 +30,8 @@ const somebody = (role: string) => {
 interface Shot {
   file: string;
   role: string;
+  /** The site whose reader it is, where the first of the role would not see it. */
+  site?: string;
   path: string | ((visit: (path: string) => Promise<unknown>) => Promise<string>);
   width: number;
   height: number;
@@ -89,6 +93,13 @@ const findingPath = first(
   "/findings?state=closed&kind=over-limit-at-ear&limit=1",
   (id) => `/findings/${id}`,
 );
+/** Somebody whose protector takes too little. */
+const fittingPath: Shot["path"] = async (ask) => {
+  const { rows } = (await ask("/findings?kind=protects-too-little&limit=10")) as {
+    rows: { worker: { id: string } | null }[];
+  };
+  return `/protectors/fitting/${rows.find(({ worker }) => worker !== null)?.worker?.id}`;
+};
 const timetablePath: Shot["path"] = async (ask) => {
   const { rows } = (await ask("/plans?state=all&limit=50")) as {
     rows: { id: string; kind: string }[];
@@ -126,9 +137,16 @@ const shots: Shot[] = [
   { file: "group", role: "officer", path: groupPath, width: 1280, height: 1300 },
   { file: "finding", role: "officer", path: findingPath, width: 1280, height: 1500 },
   { file: "due", role: "officer", path: "/due", width: 1280, height: 900 },
-  { file: "fitting", role: "officer", path: "/protectors/fitting", width: 1280, height: 900 },
+  { file: "fitting", role: "officer", path: fittingPath, width: 1280, height: 1300 },
   { file: "active-muff", role: "officer", path: activePath, width: 1280, height: 1400 },
-  { file: "timetable", role: "officer", path: timetablePath, width: 1280, height: 1300 },
+  {
+    file: "timetable",
+    role: "officer",
+    site: "Kettle Bend",
+    path: timetablePath,
+    width: 1280,
+    height: 1300,
+  },
   { file: "hand-over", role: "supervisor", path: handOverPath, width: 400, height: 860 },
   { file: "crew-sheet", role: "supervisor", path: "/crew-sheet", width: 400, height: 860 },
   { file: "my-page", role: "worker", path: "/me", width: 390, height: 844 },
@@ -154,13 +172,13 @@ const shots: Shot[] = [
 
 const browser = await startBrowser();
 try {
-  for (const { file, role, path, width, height, colorScheme } of shots) {
+  for (const { file, role, site, path, width, height, colorScheme } of shots) {
     const { page, problems } = await browser.openPage({
       viewport: { width, height },
       colorScheme,
       deviceScaleFactor: width < 500 ? 2 : 1,
     });
-    await signInAs(page, url, somebody(role));
+    await signInAs(page, url, somebody(role, site));
     const ask = (address: string) =>
       page.evaluate(async (to) => (await fetch(`/api${to}`)).json(), address);
     await page.goto(`${url}${typeof path === "string" ? path : await path(ask)}`);
