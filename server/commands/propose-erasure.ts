@@ -1,10 +1,11 @@
 import type { ErasureInput, ErasureView } from "../../shared/schemas/retention";
 import { recordAudit } from "../lib/audit";
 import { execute, rows } from "../lib/db";
-import { AppError, issue, unprocessable } from "../lib/errors";
+import { issue, unprocessable } from "../lib/errors";
 import { addJob } from "../lib/jobs";
 import type { Actor } from "../lib/policy";
 import { visibleFormerWorkers } from "../queries/retention";
+import { approveProposal, withdrawProposal } from "./decide-proposal";
 
 /** @throws AppError 422 with the place of each who is not due, is held, or stands in another proposal. */
 export async function proposeErasure(
@@ -56,13 +57,7 @@ export async function approveErasure(
   { id }: Pick<ErasureView, "id">,
   proposedBy: string,
 ): Promise<void> {
-  if (proposedBy === actor.userId) throw new AppError("own-proposal", 403);
-  const approved = await execute(
-    `UPDATE erasures SET state = 'approved', approved_by = $2, approved_at = clock_timestamp(), updated_at = now(), revision = revision + 1
-     WHERE id = $1 AND state = 'proposed'`,
-    [id, actor.userId],
-  );
-  if (approved === 0) throw new AppError("wrong-state", 409);
+  await approveProposal(actor, "erasures", id, proposedBy);
   await recordAudit(actor, {
     action: "approve-erasure",
     subjectKind: "erasure",
@@ -77,11 +72,7 @@ export async function withdrawErasure(
   actor: Actor,
   { id }: Pick<ErasureView, "id">,
 ): Promise<void> {
-  const withdrawn = await execute(
-    "UPDATE erasures SET state = 'withdrawn', withdrawn_by = $2, updated_at = now(), revision = revision + 1 WHERE id = $1 AND state = 'proposed'",
-    [id, actor.userId],
-  );
-  if (withdrawn === 0) throw new AppError("wrong-state", 409);
+  await withdrawProposal(actor, "erasures", id, ["proposed"]);
   await execute(
     "UPDATE erasure_people SET state = 'kept', kept_because = 'withdrawn', done_at = now() WHERE erasure_id = $1",
     [id],

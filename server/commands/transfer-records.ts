@@ -9,6 +9,7 @@ import { dateIssues, todayAt } from "../lib/calendar";
 import { execute, row, rows } from "../lib/db";
 import { AppError, issue, unprocessable } from "../lib/errors";
 import type { Actor } from "../lib/policy";
+import { approveProposal, withdrawProposal } from "./decide-proposal";
 
 /** A site's end is known years before. */
 const AHEAD_DAYS = 3 * 366;
@@ -47,24 +48,13 @@ export async function approveTransfer(
   transfer: Transfer,
   proposedBy: string,
 ): Promise<void> {
-  if (proposedBy === actor.userId) throw new AppError("own-proposal", 403);
-  const approved = await execute(
-    `UPDATE record_transfers SET state = 'approved', approved_by = $2, approved_at = clock_timestamp(), updated_at = now(), revision = revision + 1
-     WHERE id = $1 AND state = 'proposed'`,
-    [transfer.id, actor.userId],
-  );
-  if (approved === 0) throw new AppError("wrong-state", 409);
+  await approveProposal(actor, "record_transfers", transfer.id, proposedBy);
   await told(actor, "approve-transfer", transfer);
 }
 
 /** A sale may come to nothing after it was approved too. @throws AppError wrong-state where it is over. */
 export async function withdrawTransfer(actor: Actor, transfer: Transfer): Promise<void> {
-  const withdrawn = await execute(
-    `UPDATE record_transfers SET state = 'withdrawn', withdrawn_by = $2, updated_at = now(), revision = revision + 1
-     WHERE id = $1 AND state IN ('proposed', 'approved')`,
-    [transfer.id, actor.userId],
-  );
-  if (withdrawn === 0) throw new AppError("wrong-state", 409);
+  await withdrawProposal(actor, "record_transfers", transfer.id, ["proposed", "approved"]);
   await told(actor, "withdraw-transfer", transfer);
 }
 

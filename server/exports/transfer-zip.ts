@@ -134,7 +134,7 @@ async function addWritten(
  *
  * @returns size and SHA-256 of the whole
  */
-export async function streamTransferZip(
+export function streamTransferZip(
   actor: Actor,
   transfer: Transfer,
   years: readonly number[],
@@ -142,8 +142,7 @@ export async function streamTransferZip(
   out: Writable,
   onYear: (year: number, manifestSha256: string) => Promise<void>,
 ): Promise<EntryFacts> {
-  let whole: EntryFacts | null = null;
-  await readYear(actor.organizationId, async (client) => {
+  return readYear(actor.organizationId, async (client) => {
     const site = await row<{
       organization: string;
       site: string;
@@ -199,7 +198,6 @@ export async function streamTransferZip(
       files,
     };
     await zip.add(MANIFEST, [Buffer.from(`${JSON.stringify(manifest, null, 1)}\n`)]);
-    whole = await zip.end();
+    return zip.end();
   });
-  return whole!;
 }

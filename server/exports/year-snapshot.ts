@@ -7,10 +7,10 @@ import { inTransaction, rows } from "../lib/db";
  *
  * @param read gets the connection under the transaction, for cursors
  */
-export function readYear(
+export function readYear<Found>(
   organizationId: string,
-  read: (client: pg.Client) => Promise<void>,
-): Promise<void> {
+  read: (client: pg.Client) => Promise<Found>,
+): Promise<Found> {
   return inTransaction(
     { organizationId, readOnly: true, isolation: "repeatable-read" },
     async (transaction) => {
@@ -18,7 +18,7 @@ export function readYear(
         `SELECT set_config('statement_timeout', '30min', true), set_config('client_connection_check_interval', '1s', true),
            set_config('extra_float_digits', '1', true), set_config('datestyle', 'ISO, YMD', true)`,
       );
-      await read((transaction as unknown as { connection: pg.Client }).connection);
+      return read((transaction as unknown as { connection: pg.Client }).connection);
     },
   );
 }

@@ -9,6 +9,9 @@ interface OfWorker extends AtSite {
 }
 
 const officerAt = (actor: Actor, { siteId }: AtSite) => actor.isAt(siteId, "officer");
+/** Of the office of a site: its officers, and whoever administers it. */
+const officeAt = (actor: Actor, { siteId }: AtSite) =>
+  actor.isAt(siteId, "officer", "administrator");
 
 /** Today in SQL terms where a membership has to hold now. */
 const today = "current_date";
@@ -136,7 +139,7 @@ export const workerPolicy = policy<AtSite & { id: string }>()({
   can: {
     change: officerAt,
     assign: officerAt,
-    issueCode: (actor, { siteId }) => actor.isAt(siteId, "officer", "administrator"),
+    issueCode: officeAt,
     report: (actor, { id }) => actor.is("worker") && actor.workerId === id,
   },
 });
@@ -144,7 +147,7 @@ export const workerPolicy = policy<AtSite & { id: string }>()({
 /** A worker's name and number, and no more: what linking a sign-in takes. */
 export const workerNamePolicy = policy<AtSite>()({
   sees: (actor, w) => [actor.at(`${w}.site_id`, "officer", "administrator")],
-  can: { issueCode: (actor, { siteId }) => actor.isAt(siteId, "officer", "administrator") },
+  can: { issueCode: officeAt },
 });
 
 /** Why a worker has a personal requirement. */
@@ -255,7 +258,7 @@ export const sharedResultPolicy = policy<OfWorker>()({
 /** Grants to people of outside employers: the office's and the administrators' of the site. */
 export const employerSharePolicy = policy<AtSite>()({
   sees: (actor, g) => [actor.at(`${g}.site_id`, "officer", "administrator")],
-  can: { change: (actor, { siteId }) => actor.isAt(siteId, "officer", "administrator") },
+  can: { change: officeAt },
 });
 
 /** Trainings as the office has them; a worker reads the own ones with the worker's record. */
@@ -432,7 +435,7 @@ export const keeperPolicy = policy<object>()({
 export const retentionPolicy = policy<AtSite>()({
   sees: (actor, w) => [actor.at(`${w}.site_id`, "officer", "administrator")],
   can: {
-    propose: (actor, { siteId }) => actor.isAt(siteId, "officer", "administrator"),
+    propose: officeAt,
     setTerm: (actor) =>
       actor.grants.some(({ role, siteId }) => role === "administrator" && siteId === null),
   },
@@ -440,19 +443,20 @@ export const retentionPolicy = policy<AtSite>()({
 
 export const holdPolicy = policy<AtSite>()({
   sees: (actor, h) => [actor.at(`${h}.site_id`, "officer", "administrator")],
-  can: { lift: (actor, { siteId }) => actor.isAt(siteId, "officer", "administrator") },
+  can: { lift: officeAt },
 });
 
-/** Erasing takes two people: nobody approves what they proposed. */
-export const erasurePolicy = policy<AtSite & { state: string; proposedBy: string }>()({
+type Proposal = AtSite & { state: string; proposedBy: string };
+
+/** Two people decide: nobody approves what they proposed. */
+const approvesAnothers = (actor: Actor, one: Proposal): boolean =>
+  one.state === "proposed" && one.proposedBy !== actor.userId && officeAt(actor, one);
+
+export const erasurePolicy = policy<Proposal>()({
   sees: (actor, e) => [actor.at(`${e}.site_id`, "officer", "administrator")],
   can: {
-    approve: (actor, { siteId, state, proposedBy }) =>
-      state === "proposed" &&
-      proposedBy !== actor.userId &&
-      actor.isAt(siteId, "officer", "administrator"),
-    withdraw: (actor, { siteId, state }) =>
-      state === "proposed" && actor.isAt(siteId, "officer", "administrator"),
+    approve: approvesAnothers,
+    withdraw: (actor, one) => one.state === "proposed" && officeAt(actor, one),
   },
 });
 
@@ -460,19 +464,14 @@ export const erasurePolicy = policy<AtSite & { state: string; proposedBy: string
  * Handing a site's records over takes two people too. Only an officer takes the file: an administrator reads no exposure by
  * being one.
  */
-export const recordTransferPolicy = policy<AtSite & { state: string; proposedBy: string }>()({
+export const recordTransferPolicy = policy<Proposal>()({
   sees: (actor, t) => [actor.at(`${t}.site_id`, "officer", "administrator")],
   can: {
-    approve: (actor, { siteId, state, proposedBy }) =>
-      state === "proposed" &&
-      proposedBy !== actor.userId &&
-      actor.isAt(siteId, "officer", "administrator"),
-    withdraw: (actor, { siteId, state }) =>
-      (state === "proposed" || state === "approved") &&
-      actor.isAt(siteId, "officer", "administrator"),
+    approve: approvesAnothers,
+    withdraw: (actor, one) =>
+      (one.state === "proposed" || one.state === "approved") && officeAt(actor, one),
     take: (actor, { siteId, state }) => state === "approved" && actor.isAt(siteId, "officer"),
-    receive: (actor, { siteId, state }) =>
-      state === "approved" && actor.isAt(siteId, "officer", "administrator"),
+    receive: (actor, one) => one.state === "approved" && officeAt(actor, one),
   },
 });
 

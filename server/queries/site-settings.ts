@@ -15,12 +15,8 @@ export interface SettingsInForce {
   governing: RuleSetVersion;
 }
 
-/**
- * What a site's verdicts rest on, on a date.
- *
- * @throws AppError not-computed, where the site had chosen no rule set yet.
- */
-export async function settingsInForce(siteId: string, date: string): Promise<SettingsInForce> {
+/** What a site's verdicts rest on, on a date; null where the site had chosen no rule set yet. */
+export async function rulesOn(siteId: string, date: string): Promise<SettingsInForce | null> {
   const found = await row<Omit<SettingsInForce, "ruleSetVersion" | "governing">>(
     `SELECT id, governing_rule_set AS "governingRuleSet", comparison_rule_sets AS "comparisonRuleSets", wear_from_db AS "wearFromDb",
        credits_active_part AS "creditsActivePart", uses_uncertainty AS "usesUncertainty"
@@ -28,16 +24,18 @@ export async function settingsInForce(siteId: string, date: string): Promise<Set
     { siteId, date },
   );
   const ruleSet = found ? ruleSetInForce(found.governingRuleSet, date) : undefined;
-  if (!found || !ruleSet) throw new AppError("not-computed", 409);
-  return { ...found, ruleSetVersion: ruleSet.version, governing: ruleSet };
+  return found && ruleSet
+    ? { ...found, ruleSetVersion: ruleSet.version, governing: ruleSet }
+    : null;
 }
 
-/** The same; null where the site had chosen no rules yet. */
-export async function rulesOn(siteId: string, date: string): Promise<SettingsInForce | null> {
-  try {
-    return await settingsInForce(siteId, date);
-  } catch (error) {
-    if (error instanceof AppError && error.code === "not-computed") return null;
-    throw error;
-  }
+/**
+ * The same, where nothing can be said without.
+ *
+ * @throws AppError not-computed, where the site had chosen no rule set yet.
+ */
+export async function settingsInForce(siteId: string, date: string): Promise<SettingsInForce> {
+  const found = await rulesOn(siteId, date);
+  if (!found) throw new AppError("not-computed", 409);
+  return found;
 }

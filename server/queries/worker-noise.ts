@@ -1,6 +1,7 @@
 import { evaluateDay } from "../../shared/acoustics/day";
 import { attenuationNeed } from "../../shared/acoustics/protection/attenuation-need";
 import type { DayInput, RuleSetVersion, TimedTask } from "../../shared/acoustics/types";
+import { withTasks } from "../../shared/acoustics/with-tasks";
 import type { AttenuationNeed } from "../../shared/schemas/fit";
 import { rows } from "../lib/db";
 import type { Worker } from "../models/worker";
@@ -102,13 +103,7 @@ function askingOf(day: DayInput, governing: RuleSetVersion): Asking[] {
   );
 }
 
-const bare = (day: DayInput): DayInput => ({
-  ...day,
-  shifts: day.shifts.map((shift) => ({
-    ...shift,
-    tasks: shift.tasks.map((task) => ({ ...task, protection: null })),
-  })),
-});
+const bare = (day: DayInput): DayInput => withTasks(day, (task) => ({ ...task, protection: null }));
 
 async function recentDays(workerId: string, date: string): Promise<DayInput[]> {
   const found = await rows<{ workerId: string; date: string; refs: DayRefs }>(

@@ -15,6 +15,7 @@ import { yearDictionary } from "../exports/year-dictionary";
 import { streamYearWorkbook } from "../exports/year-workbook";
 import { streamYearZip } from "../exports/year-zip";
 import { recordAudit } from "../lib/audit";
+import { cutOffOnError } from "../lib/cut-off";
 import { inTransaction } from "../lib/db";
 import { endpoint } from "../lib/endpoint";
 import { type Actor, authorize, findVisible } from "../lib/policy";
@@ -92,7 +93,8 @@ export function defineExportRoutes(config: Pick<Config<"web">, "DATABASE_URL">):
       );
       const salt = randomBytes(16).toString("hex");
       response.attachment(fileName(site.name, year, "zip")).type("application/zip");
-      try {
+      // Cut off in the middle, it has no list of files and no manifest.
+      await cutOffOnError(response, async () => {
         // A file that somebody holds as whole is one that the trail knows by its manifest.
         await streamYearZip(
           actor,
@@ -104,12 +106,7 @@ export function defineExportRoutes(config: Pick<Config<"web">, "DATABASE_URL">):
           },
         );
         response.end();
-      } catch (error) {
-        // Cut off in the middle, it has no list of files and no manifest.
-        if (response.headersSent) response.destroy();
-        else response.removeHeader("content-disposition");
-        throw error;
-      }
+      });
     },
   );
 
@@ -138,19 +135,10 @@ export function defineExportRoutes(config: Pick<Config<"web">, "DATABASE_URL">):
       response
         .attachment(fileName(site.name, year, "xlsx"))
         .type("application/vnd.openxmlformats-officedocument.spreadsheetml.sheet");
-      try {
-        await streamYearWorkbook(
-          actor,
-          { siteId: site.id, year, workers, salt },
-          new Date(),
-          response,
-        );
-      } catch (error) {
-        // Cut off in the middle, it has no list of sheets and opens nowhere.
-        if (response.headersSent) response.destroy();
-        else response.removeHeader("content-disposition");
-        throw error;
-      }
+      // Cut off in the middle, it has no list of sheets and opens nowhere.
+      await cutOffOnError(response, () =>
+        streamYearWorkbook(actor, { siteId: site.id, year, workers, salt }, new Date(), response),
+      );
     },
   );
 

@@ -6,6 +6,7 @@ import {
   RecordTransferList,
   RecordTransferView,
 } from "../../shared/schemas/record-transfer";
+import { lockProposal } from "../commands/decide-proposal";
 import { recordYearRead } from "../commands/record-read";
 import {
   approveTransfer,
@@ -16,7 +17,8 @@ import {
 } from "../commands/transfer-records";
 import { streamTransferZip } from "../exports/transfer-zip";
 import { recordAudit } from "../lib/audit";
-import { inTransaction, row } from "../lib/db";
+import { cutOffOnError } from "../lib/cut-off";
+import { inTransaction } from "../lib/db";
 import { endpoint } from "../lib/endpoint";
 import { AppError } from "../lib/errors";
 import { only } from "../lib/only";
@@ -32,13 +34,10 @@ import {
 
 /** One that nobody else decides meanwhile, as the actor saw it, and who proposed it. */
 async function transferToDecide(actor: Actor, id: string, ifMatch: number) {
-  const locked = await row<{ proposedBy: string }>(
-    `SELECT proposed_by AS "proposedBy" FROM record_transfers WHERE id = :id FOR UPDATE`,
-    { id },
-  );
+  const proposedBy = await lockProposal("record_transfers", id);
   const transfer = only(await listRecordTransfers(actor, id));
   await requireRevision(transfer, ifMatch, async () => transfer);
-  return { transfer, proposedBy: locked?.proposedBy ?? "" };
+  return { transfer, proposedBy };
 }
 
 /** Waits until the system has taken all that was written. @throws Error where the reader has gone */
@@ -148,7 +147,8 @@ export function defineRecordTransferRoutes(): void {
         return { transfer: found, years: withRecords };
       });
       response.attachment(fileName(transfer.passesOn)).type("application/zip");
-      try {
+      // Cut off in the middle, it has no list of files and no manifest, and nobody can sign for it.
+      await cutOffOnError(response, async () => {
         const facts = await streamTransferZip(
           actor,
           transfer,
@@ -171,12 +171,7 @@ export function defineRecordTransferRoutes(): void {
           recordHandedOut(actor, transfer, { ...facts, years }),
         );
         response.end();
-      } catch (error) {
-        // Cut off in the middle, it has no list of files and no manifest, and nobody can sign for it.
-        if (response.headersSent) response.destroy();
-        else response.removeHeader("content-disposition");
-        throw error;
-      }
+      });
     },
   );
 

@@ -12,10 +12,10 @@ import {
   TermInput,
   TermView,
 } from "../../shared/schemas/retention";
+import { lockProposal } from "../commands/decide-proposal";
 import { liftHold, placeHold } from "../commands/hold-records";
 import { approveErasure, proposeErasure, withdrawErasure } from "../commands/propose-erasure";
 import { setRetentionTerm } from "../commands/set-retention-term";
-import { row } from "../lib/db";
 import { endpoint } from "../lib/endpoint";
 import { only } from "../lib/only";
 import { type Actor, authorize, findVisible } from "../lib/policy";
@@ -26,12 +26,8 @@ import { listErasures, listHolds, pageOfFormerWorkers, termView } from "../queri
 
 /** An order that nobody else decides meanwhile, and who proposed it. */
 async function erasureToDecide(actor: Actor, id: string) {
-  const locked = await row<{ proposedBy: string }>(
-    `SELECT proposed_by AS "proposedBy" FROM erasures WHERE id = :id FOR UPDATE`,
-    { id },
-  );
-  const erasure = only(await listErasures(actor, id));
-  return { erasure, proposedBy: locked?.proposedBy ?? "" };
+  const proposedBy = await lockProposal("erasures", id);
+  return { erasure: only(await listErasures(actor, id)), proposedBy };
 }
 
 /** How long people stay in the records, what is held beyond that, and taking them out. */

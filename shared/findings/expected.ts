@@ -1,6 +1,7 @@
 import { evaluateDay } from "../acoustics/day";
 import { judgedAtEar } from "../acoustics/protection/judged-at-ear";
 import type { DayEvaluation, DayInput, RuleSetVersion } from "../acoustics/types";
+import { withTasks } from "../acoustics/with-tasks";
 import { limitAtEar } from "../rule-sets";
 import type { FindingKind } from "../schemas/finding";
 import { findCauses } from "./causes";
@@ -125,15 +126,10 @@ function partlyWorn(input: DayInput, evaluation: DayEvaluation): PartlyWorn[] {
 }
 
 /** The day as it would be with what is worn in these tasks on the whole time. */
-const wornThrough = (input: DayInput, taskIds: ReadonlySet<string>): DayInput => ({
-  ...input,
-  shifts: input.shifts.map((shift) => ({
-    ...shift,
-    tasks: shift.tasks.map((task) =>
-      taskIds.has(task.taskId) && task.wornPct !== null ? { ...task, wornPct: 100 } : task,
-    ),
-  })),
-});
+const wornThrough = (input: DayInput, taskIds: ReadonlySet<string>): DayInput =>
+  withTasks(input, (task) =>
+    taskIds.has(task.taskId) && task.wornPct !== null ? { ...task, wornPct: 100 } : task,
+  );
 
 /** A finding of the past as far as it is to be held against the days since. */
 interface Past {

@@ -14,6 +14,7 @@ import type {
   TaskAtEar,
   TimedTask,
 } from "../acoustics/types";
+import { withTasks } from "../acoustics/with-tasks";
 import { besideScaleDb } from "../rule-sets";
 
 /** One protector, or a plug under a muff. */
@@ -510,16 +511,8 @@ const heldOnWorker = ({ shifts }: DayInput): (readonly [string, Protection])[] =
     ),
   );
 
-const wearing = (
-  input: DayInput,
-  protectionIn: (task: TimedTask) => Protection | null,
-): DayInput => ({
-  ...input,
-  shifts: input.shifts.map((shift) => ({
-    ...shift,
-    tasks: shift.tasks.map((task) => ({ ...task, protection: protectionIn(task), wornPct: 100 })),
-  })),
-});
+const wearing = (input: DayInput, protectionIn: (task: TimedTask) => Protection | null): DayInput =>
+  withTasks(input, (task) => ({ ...task, protection: protectionIn(task), wornPct: 100 }));
 
 const isPlug = ({ kind }: ProtectorData) => kind.endsWith("-plug") && kind !== "banded-plug";
 const isMuff = ({ kind }: ProtectorData) => kind === "earmuff" || kind === "helmet-earmuff";

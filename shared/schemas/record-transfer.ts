@@ -1,6 +1,7 @@
 import { z } from "zod";
 import { SUCCESSION_KINDS } from "../rule-sets/retention";
 import { Can, IsoDate, Name } from "./common";
+import { ProposalView } from "./retention";
 
 /** Programs write it with spaces or in capitals. */
 export const Sha256Text = z
@@ -27,19 +28,10 @@ export const RecordReceiptInput = z.object({
 });
 export type RecordReceiptInput = z.infer<typeof RecordReceiptInput>;
 
-export const RecordTransferView = z.object({
-  id: z.uuid(),
-  siteId: z.uuid(),
-  siteName: z.string(),
+export const RecordTransferView = ProposalView.extend({
   successor: z.string(),
   passesOn: z.string(),
   note: z.string(),
-  state: z.enum(["proposed", "approved", "done", "withdrawn"]),
-  proposedBy: z.string(),
-  proposedAt: z.string(),
-  approvedBy: z.string().nullable(),
-  approvedAt: z.string().nullable(),
-  withdrawnBy: z.string().nullable(),
   /** Files that went out whole, the latest first. Their hashes are not told: the successor counts their own. */
   files: z.array(
     z.object({
@@ -50,7 +42,6 @@ export const RecordTransferView = z.object({
     }),
   ),
   receipt: RecordReceiptInput.extend({ recordedBy: z.string(), recordedAt: z.string() }).nullable(),
-  revision: z.number(),
   can: Can("approve", "withdraw", "take", "receive"),
 });
 export type RecordTransferView = z.infer<typeof RecordTransferView>;

@@ -101,7 +101,8 @@ export const ErasureInput = z.object({
 });
 export type ErasureInput = z.infer<typeof ErasureInput>;
 
-export const ErasureView = z.object({
+/** What one person proposes for a site and another decides, and how far it is. */
+export const ProposalView = z.object({
   id: z.uuid(),
   siteId: z.uuid(),
   siteName: z.string(),
@@ -111,6 +112,10 @@ export const ErasureView = z.object({
   approvedBy: z.string().nullable(),
   approvedAt: z.string().nullable(),
   withdrawnBy: z.string().nullable(),
+  revision: z.number(),
+});
+
+export const ErasureView = ProposalView.extend({
   doneAt: z.string().nullable(),
   waiting: z.number(),
   erased: z.number(),
@@ -118,7 +123,6 @@ export const ErasureView = z.object({
   kept: z.array(z.object({ because: z.enum(KEPT_BECAUSE), count: z.number() })),
   /** As they stand in the records now. */
   people: z.array(z.object({ id: z.uuid(), name: z.string(), keepUntil: z.string() })),
-  revision: z.number(),
   can: Can("approve", "withdraw"),
 });
 export type ErasureView = z.infer<typeof ErasureView>;

@@ -25,7 +25,6 @@ import { formatShortDate, parseDate, parseTime } from "../../shared/format/date"
 import { parseDuration } from "../../shared/format/duration";
 import { fieldNumber, type Parsed, parseNumber } from "../../shared/format/number";
 import { type FieldIssue, issueText } from "../../shared/problems/issue-text";
-import { IsoDate } from "../../shared/schemas/common";
 import { ApiError, connectionEvents } from "../lib/api";
 import { useLocale } from "../lib/i18n";
 import { readTyped, useTypedKey, writeTyped } from "../lib/keep-typed";
@@ -366,7 +365,7 @@ function ParsedField<Values extends FieldValues, Output, Value>({
   const written =
     stored instanceof Unreadable
       ? stored.text
-      : stored === null || stored === undefined
+      : stored === null || stored === undefined || stored === ""
         ? ""
         : write(stored as Value);
   const text = typed && Object.is(typed.value, stored) ? typed.text : written;
@@ -457,10 +456,7 @@ export function DateField<Values extends FieldValues, Output>(props: FieldProps<
       kind="date"
       code="not-a-date"
       parse={(text) => orInvalid(parseDate(text, locale), text)}
-      // What was typed before in another language may be kept as text that is no date.
-      write={(value: string) =>
-        locale !== "en" && IsoDate.safeParse(value).success ? formatShortDate(value, locale) : value
-      }
+      write={(value: string) => (locale === "en" ? value : formatShortDate(value, locale))}
     />
   );
 }

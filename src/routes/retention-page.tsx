@@ -2,7 +2,6 @@ import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { useState } from "react";
 import { useSearchParams } from "react-router-dom";
-import { RULE_SETS } from "../../shared/rule-sets";
 import type { PeriodView, TermView } from "../../shared/schemas/retention";
 import { type DataColumn, DataTable } from "../components/data-table";
 import { Empty } from "../components/empty";
@@ -15,6 +14,7 @@ import { ErasuresTable } from "../features/people/erasures-table";
 import { HoldForm, HoldsTable } from "../features/people/holds-table";
 import { retentionQueries } from "../features/people/retention-queries";
 import { kindWord, termWord } from "../features/people/retention-words";
+import { RuleSetTitle, RuleSource } from "../features/people/rule-cells";
 import { TermForm } from "../features/people/term-form";
 import { TransferForm } from "../features/people/transfer-form";
 import { SuccessionDuties, TransfersTable } from "../features/people/transfers-table";
@@ -187,10 +187,7 @@ function Terms({
       id: "rule",
       head: i18n.t("Rule set"),
       isRowHead: true,
-      cell: ({ ruleSetKey }) => {
-        const found = RULE_SETS.find(({ key }) => key === ruleSetKey);
-        return found ? i18n._(found.title) : ruleSetKey;
-      },
+      cell: ({ ruleSetKey }) => <RuleSetTitle ruleSetKey={ruleSetKey} />,
     },
     {
       id: "kind",
@@ -210,15 +207,7 @@ function Terms({
     {
       id: "citation",
       head: i18n.t("Source"),
-      cell: ({ period }) =>
-        period && (
-          <>
-            {period.citation}
-            {period.sourceStatus === "from-memory" && (
-              <span className="visitor-mail">{i18n.t("from memory")}</span>
-            )}
-          </>
-        ),
+      cell: ({ period }) => period && <RuleSource {...period} />,
     },
   ];
   return (

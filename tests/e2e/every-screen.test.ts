@@ -1,9 +1,9 @@
-import { AxeBuilder } from "@axe-core/playwright";
 import type { Page } from "playwright-core";
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
 import { LOCALES, type Locale } from "../../shared/i18n/index";
 import { type RunningApp, startApp } from "../setup/app";
 import { signInAs, startBrowser, type TestBrowser } from "../setup/browser";
+import { accessibilityFaults } from "../setup/screens";
 
 let app: RunningApp;
 let browser: TestBrowser;
@@ -65,15 +65,6 @@ async function screensFrom(page: Page, start: string): Promise<Map<string, strin
   return found;
 }
 
-async function faultsOfAxe(page: Page): Promise<string[]> {
-  const { violations } = await new AxeBuilder({ page })
-    .withTags(["wcag2a", "wcag2aa", "wcag21aa", "wcag22aa"])
-    .analyze();
-  return violations.map(
-    ({ id, nodes }) => `${id}: ${nodes[0]?.html.slice(0, 200)} ${nodes[0]?.failureSummary ?? ""}`,
-  );
-}
-
 /** What makes the page wider than its window, innermost first. */
 const whatSticksOut = (page: Page): Promise<string[]> =>
   page.evaluate(() => {
@@ -119,7 +110,9 @@ describe.each(READERS)("the screens of the $role", ({ name, from }) => {
       await settle(page);
       for (const colorScheme of ["light", "dark"] as const) {
         await page.emulateMedia({ colorScheme });
-        faults.push(...(await faultsOfAxe(page)).map((it) => `${screen} ${colorScheme}: ${it}`));
+        faults.push(
+          ...(await accessibilityFaults(page)).map((it) => `${screen} ${colorScheme}: ${it}`),
+        );
       }
     }
     expect(faults).toEqual([]);

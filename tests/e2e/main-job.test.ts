@@ -1,9 +1,9 @@
-import { AxeBuilder } from "@axe-core/playwright";
 import { parse } from "csv-parse/sync";
 import type { Page } from "playwright-core";
 import { afterAll, beforeAll, describe, expect, test } from "vitest";
 import { type RunningApp, startApp } from "../setup/app";
 import { signInAs, startBrowser, type TestBrowser } from "../setup/browser";
+import { accessibilityFaults } from "../setup/screens";
 
 let app: RunningApp;
 let browser: TestBrowser;
@@ -42,17 +42,8 @@ async function visit(name: string, width = 1280) {
   return quiet;
 }
 
-/** WCAG 2.2 AA as far as a program can tell. */
-async function expectAccessible(page: Page): Promise<void> {
-  const { violations } = await new AxeBuilder({ page })
-    .withTags(["wcag2a", "wcag2aa", "wcag21aa", "wcag22aa"])
-    .analyze();
-  expect(
-    violations.map(
-      ({ id, nodes }) => `${id}: ${nodes[0]?.html.slice(0, 300)} ${nodes[0]?.failureSummary ?? ""}`,
-    ),
-  ).toEqual([]);
-}
+const expectAccessible = async (page: Page): Promise<void> =>
+  expect(await accessibilityFaults(page)).toEqual([]);
 
 async function expectNoSidewaysScroll(page: Page): Promise<void> {
   expect(

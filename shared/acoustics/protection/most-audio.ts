@@ -3,6 +3,7 @@ import { lawOf, levelFactor } from "../exchange-law";
 import { outsideCriterion } from "../outside-criterion";
 import type { Criterion, DayInput, RuleSetVersion } from "../types";
 import { isPast } from "../verdict";
+import { withTasks } from "../with-tasks";
 import { countsAsWorn, evaluateAtEar } from "./at-ear";
 
 /** No programme is louder than this, dB(A). */
@@ -44,16 +45,9 @@ export function mostAudioDb(
 }
 
 /** The day with one programme in every task in which a protector counts as worn. */
-function withProgramme(day: DayInput, audioDb: number | null): DayInput {
-  return {
-    ...day,
-    shifts: day.shifts.map((shift) => ({
-      ...shift,
-      tasks: shift.tasks.map((task) =>
-        task.protection && countsAsWorn(task, day)
-          ? { ...task, protection: { ...task.protection, audioDb } }
-          : task,
-      ),
-    })),
-  };
-}
+const withProgramme = (day: DayInput, audioDb: number | null): DayInput =>
+  withTasks(day, (task) =>
+    task.protection && countsAsWorn(task, day)
+      ? { ...task, protection: { ...task.protection, audioDb } }
+      : task,
+  );

@@ -7,6 +7,7 @@ import type {
   RuleSetVersion,
   Unaccounted,
 } from "../../../shared/acoustics/types";
+import { withTasks } from "../../../shared/acoustics/with-tasks";
 import {
   assignmentFor,
   buildDayInput,
@@ -597,13 +598,7 @@ export function withoutProtector(
   if (!task || task.wornPct === null || task.durationMin < minutes) return null;
   const wornPct = Math.max(0, task.wornPct - (100 * minutes) / task.durationMin);
   const { governing } = rulesOf(view);
-  const changed: DayInput = {
-    ...input,
-    shifts: input.shifts.map((shift) => ({
-      ...shift,
-      tasks: shift.tasks.map((one) => (one.id === task.id ? { ...one, wornPct } : one)),
-    })),
-  };
+  const changed = withTasks(input, (one) => (one.id === task.id ? { ...one, wornPct } : one));
   const { atEarDb, atEarBound } = evaluateDay(changed, governing, []);
   return atEarDb === null ? null : { taskName: task.name, atEarDb, atEarBound };
 }

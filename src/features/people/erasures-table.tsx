@@ -4,15 +4,14 @@ import { useEffect, useState } from "react";
 import { formatInstant } from "../../../shared/format/date";
 import { formatNumber } from "../../../shared/format/number";
 import { isolate } from "../../../shared/i18n/isolate";
-import type { ErasureView } from "../../../shared/schemas/retention";
-import { Button } from "../../components/button";
+import { ErasureView } from "../../../shared/schemas/retention";
 import { type DataColumn, DataTable } from "../../components/data-table";
-import { Dialog } from "../../components/dialog";
 import { Empty } from "../../components/empty";
-import { FormProblem } from "../../components/form-problem";
 import { TextButton } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
-import { retentionQueries, useDecide } from "./retention-queries";
+import { ByWhom } from "./by-whom";
+import { type Decision, DecisionDialog } from "./decision-dialog";
+import { retentionQueries, useDecision } from "./retention-queries";
 import { keptWord } from "./retention-words";
 
 /** What was proposed, by whom, and how far it is. */
@@ -52,12 +51,7 @@ export function ErasuresTable({ timeZone }: { timeZone: string }) {
       head: i18n.t("Proposed"),
       isRowHead: true,
       cell: ({ proposedBy, proposedAt, siteName }) => (
-        <>
-          <bdi>{proposedBy}</bdi>
-          <span className="visitor-mail">
-            {at(proposedAt)}, {siteName}
-          </span>
-        </>
+        <ByWhom name={proposedBy} at={`${at(proposedAt)}, ${siteName}`} />
       ),
     },
     {
@@ -70,12 +64,7 @@ export function ErasuresTable({ timeZone }: { timeZone: string }) {
       head: i18n.t("Approved"),
       cell: ({ approvedBy, approvedAt }) =>
         approvedBy !== null &&
-        approvedAt !== null && (
-          <>
-            <bdi>{approvedBy}</bdi>
-            <span className="visitor-mail">{at(approvedAt)}</span>
-          </>
-        ),
+        approvedAt !== null && <ByWhom name={approvedBy} at={at(approvedAt)} />,
     },
     {
       id: "state",
@@ -122,12 +111,10 @@ export function ErasuresTable({ timeZone }: { timeZone: string }) {
 /** Approve, which another person does, or withdraw; each asks once. */
 function Decide({ erasure }: { erasure: ErasureView }) {
   const { i18n } = useLingui();
-  const [asking, setAsking] = useState<"approval" | "withdrawal" | null>(null);
-  const decide = useDecide(erasure, () => setAsking(null));
-  const close = () => {
-    setAsking(null);
-    decide.reset();
-  };
+  const [asking, setAsking] = useState<Decision | null>(null);
+  const decide = useDecision(`/erasures/${erasure.id}`, ErasureView, erasure.revision, () =>
+    setAsking(null),
+  );
   const names = erasure.people.map(({ name }) => isolate(name)).join(", ");
   return (
     <>
@@ -139,36 +126,25 @@ function Decide({ erasure }: { erasure: ErasureView }) {
       {erasure.can.withdraw && (
         <TextButton onClick={() => setAsking("withdrawal")}>{i18n.t("Withdraw")}</TextButton>
       )}
-      <Dialog
-        isOpen={asking !== null}
-        onClose={close}
-        title={
-          asking === "approval"
-            ? i18n.t("{count, plural, one {Erase one person?} other {Erase # people?}}", {
-                count: erasure.people.length,
-              })
-            : i18n.t("Withdraw the proposal?")
-        }
-        lead={
-          asking === "approval"
-            ? i18n.t("{names}. It begins at once and can’t be taken back.", { names })
-            : i18n.t("{names} stay as they are and can be proposed again.", { names })
-        }
-        actions={
-          <>
-            <Button
-              kind="primary"
-              isBusy={decide.isPending}
-              onClick={() => asking !== null && decide.start(asking)}
-            >
-              {asking === "approval" ? i18n.t("Erase") : i18n.t("Withdraw")}
-            </Button>
-            <Button onClick={close}>{i18n.t("Leave as it was")}</Button>
-          </>
-        }
-      >
-        {decide.isError && <FormProblem error={decide.error} />}
-      </Dialog>
+      <DecisionDialog
+        asking={asking}
+        decide={decide}
+        onClose={() => setAsking(null)}
+        asks={{
+          approval: {
+            title: i18n.t("{count, plural, one {Erase one person?} other {Erase # people?}}", {
+              count: erasure.people.length,
+            }),
+            lead: i18n.t("{names}. It begins at once and can’t be taken back.", { names }),
+            act: i18n.t("Erase"),
+          },
+          withdrawal: {
+            title: i18n.t("Withdraw the proposal?"),
+            lead: i18n.t("{names} stay as they are and can be proposed again.", { names }),
+            act: i18n.t("Withdraw"),
+          },
+        }}
+      />
     </>
   );
 }

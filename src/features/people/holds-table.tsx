@@ -17,6 +17,7 @@ import {
 import { FormProblem } from "../../components/form-problem";
 import { TextButton } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
+import { ByWhom } from "./by-whom";
 import { searchWorkers } from "./queries";
 import { retentionQueries, useLiftHold, usePlaceHold } from "./retention-queries";
 
@@ -42,24 +43,14 @@ export function HoldsTable({ timeZone }: { timeZone: string }) {
     {
       id: "placed",
       head: i18n.t("Held by"),
-      cell: ({ placedBy, placedAt }) => (
-        <>
-          <bdi>{placedBy}</bdi>
-          <span className="visitor-mail">{at(placedAt)}</span>
-        </>
-      ),
+      cell: ({ placedBy, placedAt }) => <ByWhom name={placedBy} at={at(placedAt)} />,
     },
     {
       id: "lifted",
       head: i18n.t("Lifted"),
       cell: (hold) =>
         hold.lifted ? (
-          <>
-            <bdi>{hold.lifted.by}</bdi>
-            <span className="visitor-mail">
-              {at(hold.lifted.at)}: {hold.lifted.reason}
-            </span>
-          </>
+          <ByWhom name={hold.lifted.by} at={`${at(hold.lifted.at)}: ${hold.lifted.reason}`} />
         ) : (
           hold.can.lift && <Lift hold={hold} />
         ),

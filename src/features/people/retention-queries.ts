@@ -4,7 +4,7 @@ import {
   useMutation,
   useQueryClient,
 } from "@tanstack/react-query";
-import type { z } from "zod";
+import type { ZodType, z } from "zod";
 import {
   type ErasureInput,
   ErasureList,
@@ -91,16 +91,19 @@ export function usePropose(onDone: (view: ErasureView) => void) {
   );
 }
 
-export function useDecide(
-  { id, revision }: Pick<ErasureView, "id" | "revision">,
+/** Approval or withdrawal of what one person proposed and another decides. */
+export function useDecision<View>(
+  path: string,
+  schema: ZodType<View>,
+  revision: number,
   onDone: () => void,
 ) {
   return useRetentionChange(
     (what: "approval" | "withdrawal") =>
-      api.post(`/erasures/${id}/${what}`, {
+      api.post(`${path}/${what}`, {
         body: {},
         ifMatch: String(revision),
-        schema: ErasureView,
+        schema,
         idempotencyKey: newChangeKey(),
       }),
     onDone,

@@ -5,7 +5,7 @@ import {
   RecordTransferList,
   RecordTransferView,
 } from "../../../shared/schemas/record-transfer";
-import { api, newChangeKey } from "../../lib/api";
+import { api, apiAddress, newChangeKey } from "../../lib/api";
 import { useChangeKey } from "../../lib/change-key";
 import { retentionQueries, useRetentionChange } from "./retention-queries";
 
@@ -22,7 +22,7 @@ export const transferQueries = {
 };
 
 export const transferFileAddress = ({ id }: Pick<RecordTransferView, "id">) =>
-  `/api/record-transfers/${id}/records.zip`;
+  apiAddress(`/record-transfers/${id}/records.zip`);
 
 export function useProposeTransfer(onDone: () => void) {
   const changeKey = useChangeKey();
@@ -41,19 +41,6 @@ export function useProposeTransfer(onDone: () => void) {
 }
 
 type Seen = Pick<RecordTransferView, "id" | "revision">;
-
-export function useDecideTransfer({ id, revision }: Seen, onDone: () => void) {
-  return useRetentionChange(
-    (what: "approval" | "withdrawal") =>
-      api.post(`/record-transfers/${id}/${what}`, {
-        body: {},
-        ifMatch: String(revision),
-        schema: RecordTransferView,
-        idempotencyKey: newChangeKey(),
-      }),
-    onDone,
-  );
-}
 
 export function useReceiveTransfer({ id, revision }: Seen, onDone: () => void) {
   return useRetentionChange(

@@ -3,12 +3,7 @@ import { useQueryClient } from "@tanstack/react-query";
 import { useState } from "react";
 import { formatDate, localDateOf } from "../../../shared/format/date";
 import { isolate } from "../../../shared/i18n/isolate";
-import {
-  RecordReceiptInput,
-  type RecordTransferView,
-} from "../../../shared/schemas/record-transfer";
-import { Button } from "../../components/button";
-import { Dialog } from "../../components/dialog";
+import { RecordReceiptInput, RecordTransferView } from "../../../shared/schemas/record-transfer";
 import {
   DateField,
   Form,
@@ -24,12 +19,9 @@ import { TextButton } from "../../components/link";
 import { Status } from "../../components/status";
 import { download } from "../../lib/download";
 import { useLocale } from "../../lib/i18n";
-import {
-  transferFileAddress,
-  transferQueries,
-  useDecideTransfer,
-  useReceiveTransfer,
-} from "./transfer-queries";
+import { type Decision, DecisionDialog } from "./decision-dialog";
+import { useDecision } from "./retention-queries";
+import { transferFileAddress, transferQueries, useReceiveTransfer } from "./transfer-queries";
 
 /** What can be done with one: approve, take the file, record the receipt, withdraw. */
 export function TransferSteps({
@@ -40,7 +32,7 @@ export function TransferSteps({
   timeZone: string;
 }) {
   const { i18n } = useLingui();
-  const [asking, setAsking] = useState<"approval" | "withdrawal" | null>(null);
+  const [asking, setAsking] = useState<Decision | null>(null);
   const [isSigning, setIsSigning] = useState(false);
   const { can, state, files } = transfer;
   if (isSigning)
@@ -75,52 +67,38 @@ function Decide({
   onClose,
 }: {
   transfer: RecordTransferView;
-  asking: "approval" | "withdrawal" | null;
+  asking: Decision | null;
   onClose: () => void;
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  const decide = useDecideTransfer(transfer, onClose);
-  const close = () => {
-    onClose();
-    decide.reset();
-  };
-  const names = { site: isolate(transfer.siteName), successor: isolate(transfer.successor) };
+  const { id, revision, siteName, successor, passesOn } = transfer;
+  const decide = useDecision(`/record-transfers/${id}`, RecordTransferView, revision, onClose);
+  const names = { site: isolate(siteName), successor: isolate(successor) };
   return (
-    <Dialog
-      isOpen={asking !== null}
-      onClose={close}
-      title={
-        asking === "approval"
-          ? i18n.t("Hand the records of {site} over?", names)
-          : i18n.t("Withdraw the handing over?")
-      }
-      lead={
-        asking === "approval"
-          ? i18n.t(
-              "{successor} gets all records of {site} with names and numbers. The site passes on {date}. An officer then takes the file.",
-              { ...names, date: formatDate(transfer.passesOn, locale) },
-            )
-          : i18n.t(
-              "{successor} gets no more files. Files that went out stay where they are.",
-              names,
-            )
-      }
-      actions={
-        <>
-          <Button
-            kind="primary"
-            isBusy={decide.isPending}
-            onClick={() => asking !== null && decide.start(asking)}
-          >
-            {asking === "approval" ? i18n.t("Approve") : i18n.t("Withdraw")}
-          </Button>
-          <Button onClick={close}>{i18n.t("Leave as it was")}</Button>
-        </>
-      }
-    >
-      {decide.isError && <FormProblem error={decide.error} />}
-    </Dialog>
+    <DecisionDialog
+      asking={asking}
+      decide={decide}
+      onClose={onClose}
+      asks={{
+        approval: {
+          title: i18n.t("Hand the records of {site} over?", names),
+          lead: i18n.t(
+            "{successor} gets all records of {site} with names and numbers. The site passes on {date}. An officer then takes the file.",
+            { ...names, date: formatDate(passesOn, locale) },
+          ),
+          act: i18n.t("Approve"),
+        },
+        withdrawal: {
+          title: i18n.t("Withdraw the handing over?"),
+          lead: i18n.t(
+            "{successor} gets no more files. Files that went out stay where they are.",
+            names,
+          ),
+          act: i18n.t("Withdraw"),
+        },
+      }}
+    />
   );
 }
 

@@ -3,7 +3,6 @@ import { useQuery } from "@tanstack/react-query";
 import { formatDate, formatInstant } from "../../../shared/format/date";
 import { formatNumber } from "../../../shared/format/number";
 import { isolate } from "../../../shared/i18n/isolate";
-import { RULE_SETS } from "../../../shared/rule-sets";
 import type {
   RecordTransferView,
   SuccessionDutyView,
@@ -11,7 +10,9 @@ import type {
 import { type DataColumn, DataTable } from "../../components/data-table";
 import { Empty } from "../../components/empty";
 import { useLocale } from "../../lib/i18n";
+import { ByWhom } from "./by-whom";
 import { successionWord } from "./retention-words";
+import { RuleSetTitle, RuleSource } from "./rule-cells";
 import { transferQueries } from "./transfer-queries";
 import { TransferSteps } from "./transfer-steps";
 
@@ -44,24 +45,14 @@ export function TransfersTable({ timeZone }: { timeZone: string }) {
     {
       id: "proposed",
       head: i18n.t("Proposed"),
-      cell: ({ proposedBy, proposedAt }) => (
-        <>
-          <bdi>{proposedBy}</bdi>
-          <span className="visitor-mail">{at(proposedAt)}</span>
-        </>
-      ),
+      cell: ({ proposedBy, proposedAt }) => <ByWhom name={proposedBy} at={at(proposedAt)} />,
     },
     {
       id: "approved",
       head: i18n.t("Approved"),
       cell: ({ approvedBy, approvedAt }) =>
         approvedBy !== null &&
-        approvedAt !== null && (
-          <>
-            <bdi>{approvedBy}</bdi>
-            <span className="visitor-mail">{at(approvedAt)}</span>
-          </>
-        ),
+        approvedAt !== null && <ByWhom name={approvedBy} at={at(approvedAt)} />,
     },
     { id: "state", head: i18n.t("State"), cell: (one) => <State transfer={one} at={at} /> },
     {
@@ -155,23 +146,13 @@ export function SuccessionDuties() {
       id: "rule",
       head: i18n.t("Rule set"),
       isRowHead: true,
-      cell: ({ ruleSetKey }) => {
-        const found = RULE_SETS.find(({ key }) => key === ruleSetKey);
-        return found ? i18n._(found.title) : ruleSetKey;
-      },
+      cell: ({ ruleSetKey }) => <RuleSetTitle ruleSetKey={ruleSetKey} />,
     },
     { id: "what", head: i18n.t("What it asks"), cell: (duty) => successionWord(i18n, duty) },
     {
       id: "citation",
       head: i18n.t("Source"),
-      cell: ({ citation, sourceStatus }) => (
-        <>
-          {citation}
-          {sourceStatus === "from-memory" && (
-            <span className="visitor-mail">{i18n.t("from memory")}</span>
-          )}
-        </>
-      ),
+      cell: (duty) => <RuleSource {...duty} />,
     },
   ];
   // Its state is the table's above.
