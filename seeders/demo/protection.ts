@@ -147,8 +147,8 @@ export const TESTED_TOGETHER = {
 export const HEADSET_AUDIO_DB = 72;
 
 /**
- * Octave bands off a meter with one microphone outside J. Castellow's cup and one inside, in the run-up: the active part
- * does what its test report says.
+ * Octave bands off a meter with one microphone outside J. Castellow's cups in turn and one inside, in the run-up: the
+ * active part does what its test report says.
  */
 export const ACTIVE_CHECK = {
   worker: "3318",
@@ -156,7 +156,17 @@ export const ACTIVE_CHECK = {
   task: "Run-up",
   daysAgo: 2,
   outsideDb: [106, 104, 100, 96, 93, 90, 86, 80] as OctaveBandValues,
-  /** Noise reduction with the active part off, and what it takes off more, dB. */
-  reductionDb: [10, 9, 13, 21, 28, 30, 34, 32],
-  activeDb: [9, 16, 19, 14, 4, -2, 0, 0],
+  /** By ear the noise reduction with the active part off, and what it takes off more, dB. */
+  ears: [
+    {
+      ear: "left",
+      reductionDb: [10, 9, 13, 21, 28, 30, 34, 32],
+      activeDb: [9, 16, 19, 14, 4, -2, 0, 0],
+    },
+    {
+      ear: "right",
+      reductionDb: [11, 10, 14, 21, 29, 30, 33, 33],
+      activeDb: [9, 15, 19, 13, 4, -1, 0, 0],
+    },
+  ],
 } as const;

@@ -161,7 +161,7 @@ async function layOutTests(demo: Demo): Promise<void> {
 }
 
 async function checkActivePart(demo: Demo): Promise<void> {
-  const { worker: number, model, task, daysAgo, outsideDb, reductionDb, activeDb } = ACTIVE_CHECK;
+  const { worker: number, model, task, daysAgo, outsideDb, ears } = ACTIVE_CHECK;
   const calendar = demo.calendar("ostmere");
   const officer = demo.officer("ostmere");
   const testedOn = calendar.daysAgo(daysAgo);
@@ -169,32 +169,35 @@ async function checkActivePart(demo: Demo): Promise<void> {
   const under = (takenDb: readonly number[]) =>
     outsideDb.map((levelDb, band) => levelDb! - takenDb[band]!);
   await demo.at(calendar.instant(testedOn, "13:10"), async () => {
-    const id = await typeMicrophoneCheck(
-      officer,
-      worker,
-      TypedCheckInput.parse({
-        modelId: known(demo.models, model).id,
-        ear: "left",
-        correction: {
-          kind: "none",
-          bandsDb: [0, 0, 0, 0, 0, 0, 0, 0],
-          source: "Both microphones at the cup, none in the canal",
-        },
-        taskId: known(demo.tasks, taskKey("ostmere", task)).id,
-        bands: {
-          outsideOffDb: outsideDb,
-          insideOffDb: under(reductionDb),
-          outsideOnDb: outsideDb,
-          insideOnDb: under(reductionDb.map((offDb, band) => offDb + activeDb[band]!)),
-        },
-      }),
-    );
-    const check = (await MicrophoneCheck.findByPk(id))!;
-    await keepMicrophoneCheck(officer, check, worker, {
-      testedOn,
-      size: null,
-      needDb: null,
-      joinFitTestId: null,
-    });
+    let joinFitTestId: string | null = null;
+    for (const { ear, reductionDb, activeDb } of ears) {
+      const id = await typeMicrophoneCheck(
+        officer,
+        worker,
+        TypedCheckInput.parse({
+          modelId: known(demo.models, model).id,
+          ear,
+          correction: {
+            kind: "none",
+            bandsDb: [0, 0, 0, 0, 0, 0, 0, 0],
+            source: "Both microphones at the cup, none in the canal",
+          },
+          taskId: known(demo.tasks, taskKey("ostmere", task)).id,
+          bands: {
+            outsideOffDb: outsideDb,
+            insideOffDb: under(reductionDb),
+            outsideOnDb: outsideDb,
+            insideOnDb: under(reductionDb.map((offDb, band) => offDb + activeDb[band]!)),
+          },
+        }),
+      );
+      const check = (await MicrophoneCheck.findByPk(id))!;
+      joinFitTestId = await keepMicrophoneCheck(officer, check, worker, {
+        testedOn,
+        size: null,
+        needDb: null,
+        joinFitTestId,
+      });
+    }
   });
 }

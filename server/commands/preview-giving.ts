@@ -1,12 +1,11 @@
 import type { DaySummary } from "../../shared/day/summarize-day";
 import type { GivingPreview } from "../../shared/schemas/choice";
 import type { AssignmentInput } from "../../shared/schemas/worker";
-import { todayAt } from "../lib/calendar";
 import { rows } from "../lib/db";
 import { groupBy } from "../lib/group-by";
 import type { Actor } from "../lib/policy";
 import type { Worker } from "../models/worker";
-import { type Expected, expectedDays } from "../queries/expected-days";
+import { expectedDays, peopleExpected } from "../queries/expected-days";
 import { settingsInForce } from "../queries/site-settings";
 import { assignToMany, type Paths } from "./assign-protector";
 import { previewChange } from "./preview-change";
@@ -89,18 +88,13 @@ async function usualDays(
   workers: readonly Worker[],
   fromDate: string,
 ): Promise<Map<string, DaySummary>> {
-  const found = await rows<Expected & { siteId: string; timeZone: string }>(
-    `SELECT w.id, w.site_id AS "siteId", s.time_zone AS "timeZone", w.must_wear AS "mustWear", w.personal_target_db AS "personalTargetDb",
-       coalesce((SELECT json_agg(json_build_object('taskId', j.task_id, 'durationMin', j.duration_min) ORDER BY j.position)
-                 FROM job_tasks j WHERE j.job_id = w.job_id), '[]') AS nominal,
-       coalesce((SELECT c.usual_length_min FROM crew_memberships m JOIN crews c ON c.id = m.crew_id WHERE m.worker_id = w.id
-          AND m.valid @> CAST(:fromDate AS date) ORDER BY m.is_loan, lower(m.valid) DESC LIMIT 1), 0) AS "usualLengthMin"
-     FROM workers w JOIN sites s ON s.id = w.site_id WHERE w.id = ANY (CAST(:ids AS uuid[]))`,
-    { ids: `{${workers.map(({ id }) => id).join(",")}}`, fromDate },
+  const found = await peopleExpected(
+    workers.map(({ id }) => id),
+    fromDate,
   );
   const days = new Map<string, DaySummary>();
   for (const [siteId, people] of groupBy(found, (worker) => worker.siteId)) {
-    const today = todayAt(people[0]!.timeZone);
+    const { today } = people[0]!;
     const date = fromDate > today ? fromDate : today;
     const settings = await settingsInForce(siteId, date);
     for (const [id, summary] of await expectedDays(siteId, date, people, settings))

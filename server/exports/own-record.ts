@@ -82,7 +82,9 @@ export async function ownRecord(
     protectors: assignments,
     "handed-out": await allOf((cursor) => listIssues(actor, { ...paged(cursor), state: "all" })),
     "fit-tests": await allOf((cursor) => listFitTests(actor, paged(cursor))),
-    findings: await allOf((cursor) => listFindings(actor, { ...paged(cursor), state: "all" })),
+    findings: (await allOf((cursor) => listFindings(actor, { ...paged(cursor), state: "all" })))
+      // What they come to today is no part of the record.
+      .map(({ today: _, ...finding }) => finding),
     letters: (await lettersOfWorker(actor, workerId)).map((letter) => ({
       ...letter,
       ...textOf.get(letter.id),

@@ -2,12 +2,10 @@ import {
   type Ahead,
   type ExpectedDay,
   factsAhead,
-  faultsAhead,
   isSettled,
   orderAhead,
 } from "../../shared/findings/expected";
 import { foldOrders, ORDER_KINDS, WORN_KINDS } from "../../shared/findings/orders";
-import { type Proposal, proposeRemedy } from "../../shared/findings/remedy";
 import type { CrewSheetRow } from "../../shared/schemas/crew";
 import type { FindingKind, FindingState } from "../../shared/schemas/finding";
 import { rows } from "../lib/db";
@@ -15,8 +13,7 @@ import { groupBy } from "../lib/group-by";
 import { type Actor, visible } from "../lib/policy";
 import { findingPolicy } from "../policies";
 import { RULES_UNTIL } from "./finding-view";
-import { knownOnWorkers, onWorkerKey } from "./on-worker";
-import { registerOn } from "./protector-register";
+import { lastInOrder, type Outlook, outlooksOf, WAS_CREDITED } from "./outlook";
 
 interface OrderRow {
   workerId: string;
@@ -32,13 +29,6 @@ interface OrderRow {
 }
 
 type SheetOrders = Pick<CrewSheetRow, "order" | "ahead">;
-
-/** What is wrong with a day to come, the worst first, and what would put it right. */
-interface Outlook {
-  readonly day: ExpectedDay;
-  readonly faults: readonly Ahead[];
-  readonly proposal: Proposal | null;
-}
 
 /**
  * By worker the one order of the sheet: of an open finding, as far as the days since and the day to come still ask for
@@ -101,7 +91,7 @@ async function openFindings(
   if (workerIds.length === 0) return new Map();
   const found = await rows<OrderRow>(
     `SELECT * FROM (SELECT f.worker_id AS "workerId", f.id AS "findingId", f.kind, f.state, f.facts, f.last_date::text AS "lastDate",
-       EXISTS (SELECT 1 FROM day_results r WHERE r.id = f.last_result_id AND r.at_ear_counted_db IS NOT NULL) AS "wasCredited",
+       ${WAS_CREDITED} AS "wasCredited",
        ${RULES_UNTIL} AS "rulesUntil", f.revision, f.site_id AS "siteId" FROM findings f
      WHERE f.worker_id = ANY (CAST(:ids AS uuid[])) AND f.state <> 'closed' AND ${visible(findingPolicy, actor, "f")}) open
      WHERE "rulesUntil" IS NULL OR NOT EXISTS (SELECT 1 FROM days d WHERE d.worker_id = open."workerId"
@@ -111,48 +101,6 @@ async function openFindings(
   return groupBy(
     found.filter(({ kind }) => ORDER_KINDS.includes(kind)),
     ({ workerId }) => workerId,
-  );
-}
-
-/** By worker the latest judged day with a word for what was worn, where that was in order. */
-async function lastInOrder(workerIds: readonly string[]): Promise<Map<string, string>> {
-  if (workerIds.length === 0) return new Map();
-  const found = await rows<{ workerId: string; date: string; isInOrder: boolean }>(
-    `SELECT DISTINCT ON (d.worker_id) d.worker_id AS "workerId", d.date::text AS date,
-       r.word NOT IN ('too-little', 'too-much') AND r.verdict_at_ear NOT IN ('over', 'cant-tell-yet') AS "isInOrder"
-     FROM days d JOIN day_results r ON r.id = d.current_result_id
-     WHERE d.worker_id = ANY (CAST(:ids AS uuid[])) AND r.word IS NOT NULL ORDER BY d.worker_id, d.date DESC`,
-    { ids: `{${workerIds.join(",")}}` },
-  );
-  return new Map(
-    found.flatMap(({ workerId, date, isInOrder }): [string, string][] =>
-      isInOrder ? [[workerId, date]] : [],
-    ),
-  );
-}
-
-async function outlooksOf(
-  date: string,
-  expected: ReadonlyMap<string, ExpectedDay>,
-): Promise<Map<string, Outlook>> {
-  const days = [...expected].map(([workerId, day]) => ({
-    workerId,
-    date,
-    day,
-    faults: faultsAhead(day),
-  }));
-  const faulty = days.filter(({ faults }) => faults.length > 0);
-  const known = await knownOnWorkers(faulty);
-  const register = faulty.length > 0 ? await registerOn(date) : [];
-  return new Map(
-    days.map((one): [string, Outlook] => {
-      const { workerId, day, faults } = one;
-      const proposal =
-        faults.length > 0
-          ? proposeRemedy(day.input, day.governing, register, known.get(onWorkerKey(one)))
-          : null;
-      return [workerId, { day, faults, proposal }];
-    }),
   );
 }
 

@@ -1,37 +1,24 @@
 import type { z } from "zod";
 import type { ExpectedDay } from "../../shared/findings/expected";
 import { isAsked } from "../../shared/findings/orders";
-import { formatTime } from "../../shared/format/date";
 import type { CrewSheetRow, CrewSheetView } from "../../shared/schemas/crew";
-import { todayAt } from "../lib/calendar";
-import { row, rows } from "../lib/db";
+import { rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
 import type { Crew } from "../models/worker";
 import { crewPolicy } from "../policies";
+import { comingDays } from "./coming-days";
 import { sheetOrders } from "./crew-orders";
 import { dayFiguresOf } from "./day-figures";
 import { crewMembers } from "./day-grid";
 import { evaluateExpected, summarizeExpected } from "./expected-days";
 import { waitingHandOver } from "./hand-over-waiting";
-import { nextShiftDate } from "./next-shift";
 import { settingsInForce } from "./site-settings";
 
 /** A crew's expected day, computed from roster, nominal day and usual task levels, beside its last recorded one. */
 export async function crewSheet(actor: Actor, crew: Crew): Promise<z.input<typeof CrewSheetView>> {
-  const site = await row<{ timeZone: string }>(
-    `SELECT time_zone AS "timeZone" FROM sites WHERE id = :id`,
-    { id: crew.siteId },
-  );
-  const timeZone = site?.timeZone ?? "UTC";
-  const today = todayAt(timeZone);
-  const last = await row<{ date: string }>(
-    "SELECT max(date)::text AS date FROM days WHERE crew_id = :crewId AND date <= CAST(:today AS date) AND current_result_id IS NOT NULL",
-    { crewId: crew.id, today },
-  );
-  const lastDate = last?.date ?? null;
-  // A shift that is over and recorded is expected no more.
-  const expectedDate =
-    lastDate === today && isShiftOver(crew, timeZone) ? await nextShiftDate(crew.id, today) : today;
+  const coming = (await comingDays([crew.id])).get(crew.id);
+  if (!coming) throw new Error("the crew was found just before");
+  const { timeZone, lastDate, date: expectedDate } = coming;
   const settings = await settingsInForce(crew.siteId, expectedDate);
   const members = await crewMembers(crew.id, expectedDate);
   const expected = await expectedOf(crew, expectedDate, members, settings);
@@ -102,13 +89,6 @@ export async function crewSheet(actor: Actor, crew: Crew): Promise<z.input<typeo
     },
     handOver: await waitingHandOver(actor, crew.id),
   };
-}
-
-/** By the clock of the site; one that runs past midnight is over on the next date only. */
-function isShiftOver({ usualStart, usualLengthMin }: Crew, timeZone: string): boolean {
-  const [hour, minute] = usualStart.split(":").map(Number);
-  const now = formatTime(new Date().toISOString(), timeZone).split(":").map(Number);
-  return (now[0] ?? 0) * 60 + (now[1] ?? 0) >= (hour ?? 0) * 60 + (minute ?? 0) + usualLengthMin;
 }
 
 /** The days of those who are there. */

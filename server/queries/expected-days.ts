@@ -2,6 +2,7 @@ import { evaluateDay } from "../../shared/acoustics/day";
 import { buildDayInput, type DayContext } from "../../shared/day/build-day-input";
 import { type DaySummary, summarizeDay } from "../../shared/day/summarize-day";
 import type { ExpectedDay } from "../../shared/findings/expected";
+import { rows } from "../lib/db";
 import { assignmentsOn, gridTasks, lastWearing, modelsOn } from "./day-grid";
 import type { SettingsInForce } from "./site-settings";
 
@@ -13,6 +14,34 @@ export interface Expected {
   readonly nominal: readonly { taskId: string; durationMin: number }[];
   /** How long the shift usually is, minutes; a nominal day that is longer is the shift. */
   readonly usualLengthMin: number;
+}
+
+/** Whose usual day it is, and where. */
+export interface PersonExpected extends Expected {
+  readonly siteId: string;
+  /** ISO date at the site. */
+  readonly today: string;
+  /** The crew they work in, on loan or not. */
+  readonly crewId: string | null;
+}
+
+/** These workers with their nominal days, and the crew they are in on a date; today where none is given. */
+export function peopleExpected(
+  workerIds: readonly string[],
+  date: string | null = null,
+): Promise<PersonExpected[]> {
+  return rows<PersonExpected>(
+    `SELECT w.id, w.site_id AS "siteId", now.today::text AS today, w.must_wear AS "mustWear", w.personal_target_db AS "personalTargetDb",
+       coalesce((SELECT json_agg(json_build_object('taskId', j.task_id, 'durationMin', j.duration_min) ORDER BY j.position)
+                 FROM job_tasks j WHERE j.job_id = w.job_id), '[]') AS nominal,
+       crew.id AS "crewId", coalesce(crew.usual_length_min, 0) AS "usualLengthMin"
+     FROM workers w JOIN sites s ON s.id = w.site_id
+     CROSS JOIN LATERAL (SELECT (now() AT TIME ZONE s.time_zone)::date AS today) now
+     LEFT JOIN LATERAL (SELECT c.id, c.usual_length_min FROM crew_memberships m JOIN crews c ON c.id = m.crew_id
+       WHERE m.worker_id = w.id AND m.valid @> coalesce(CAST(:date AS date), now.today) ORDER BY m.is_loan, lower(m.valid) DESC LIMIT 1) crew ON TRUE
+     WHERE w.id = ANY (CAST(:ids AS uuid[]))`,
+    { ids: `{${workerIds.join(",")}}`, date },
+  );
 }
 
 /** What these people's nominal days come to, as a list row shows it; see `evaluateExpected`. */

@@ -9,6 +9,7 @@ import type {
 import { addDays, localDate } from "../../shared/time/zone";
 import { decodeCursor, pageFrom } from "../lib/cursor";
 import { rows } from "../lib/db";
+import { only } from "../lib/only";
 import { type Actor, abilities, visible } from "../lib/policy";
 import type { Finding } from "../models/finding";
 import { evidencePolicy, findingPolicy } from "../policies";
@@ -17,8 +18,10 @@ import {
   type DayFiguresRow,
   presentDayFigures,
 } from "../presenters/day-figures";
+import { findingsToday, WAS_CREDITED } from "./outlook";
 
-type Found = Omit<FindingRow, "figures" | "can" | "worker"> & {
+type Found = Omit<FindingRow, "figures" | "can" | "worker" | "today"> & {
+  wasCredited: boolean;
   workerId: string | null;
   workerName: string | null;
   employeeNumber: string | null;
@@ -37,7 +40,7 @@ export const RULES_UNTIL = `(SELECT coalesce(
 const selectFindings = (
   actor: Actor,
 ) => `SELECT f.id, f.kind, f.state, f.criterion, f.use_key AS "useKey", f.facts, f.first_date::text AS "firstDate", f.last_date::text AS "lastDate",
-    f.days_count AS "daysCount",
+    f.days_count AS "daysCount", ${WAS_CREDITED} AS "wasCredited",
     CASE WHEN f.job_id IS NULL THEN 1 ELSE (SELECT count(DISTINCT e.worker_id)::int FROM finding_evidence e WHERE e.finding_id = f.id) END AS "workersCount", f.due_on::text AS "dueOn", ${RULES_UNTIL} AS "rulesUntil", f.site_id AS "siteId", f.revision, w.id AS "workerId", w.name AS "workerName",
     w.employee_number AS "employeeNumber", coalesce(j.name, i.name) AS "subjectName",
     (SELECT c.name FROM crew_memberships m JOIN crews c ON c.id = m.crew_id WHERE m.worker_id = f.worker_id AND m.valid @> f.last_date LIMIT 1) AS "crewName",
@@ -46,19 +49,20 @@ const selectFindings = (
   FROM findings f LEFT JOIN workers w ON w.id = f.worker_id LEFT JOIN jobs j ON j.id = f.job_id
   LEFT JOIN instruments i ON i.id = f.instrument_id LEFT JOIN users o ON o.id = f.owner_id`;
 
-function present(
-  actor: Actor,
-  { workerId, workerName, employeeNumber, figures, ...finding }: Found,
-): FindingRow {
-  return {
-    ...finding,
-    worker:
-      workerId === null
-        ? null
-        : { id: workerId, name: workerName ?? "", employeeNumber: employeeNumber ?? "" },
-    figures: figures ? presentDayFigures(figures) : null,
-    can: abilities(findingPolicy, actor, finding),
-  };
+async function presentAll(actor: Actor, found: readonly Found[]): Promise<FindingRow[]> {
+  const today = await findingsToday(found);
+  return found.map(
+    ({ workerId, workerName, employeeNumber, figures, wasCredited: _, ...finding }) => ({
+      ...finding,
+      today: today.get(finding.id) ?? null,
+      worker:
+        workerId === null
+          ? null
+          : { id: workerId, name: workerName ?? "", employeeNumber: employeeNumber ?? "" },
+      figures: figures ? presentDayFigures(figures) : null,
+      can: abilities(findingPolicy, actor, finding),
+    }),
+  );
 }
 
 const stateCondition: Record<z.output<typeof FindingFilter>["state"], string> = {
@@ -93,20 +97,14 @@ export async function listFindings(
       limit: filter.limit + 1,
     },
   );
-  return pageFrom(
-    found.map((one) => present(actor, one)),
-    filter.limit,
-    ({ dueOn, id }) => [dueOn, id],
-  );
+  return pageFrom(await presentAll(actor, found), filter.limit, ({ dueOn, id }) => [dueOn, id]);
 }
 
 export async function findingView(
   actor: Actor,
   finding: Finding,
 ): Promise<z.input<typeof FindingView>> {
-  const [found] = await rows<Found>(`${selectFindings(actor)} WHERE f.id = :id`, {
-    id: finding.id,
-  });
+  const found = await rows<Found>(`${selectFindings(actor)} WHERE f.id = :id`, { id: finding.id });
   const steps = await rows<{
     id: string;
     kind: FindingView["steps"][number]["kind"];
@@ -138,7 +136,7 @@ export async function findingView(
     { id: finding.id },
   );
   return {
-    ...present(actor, found as Found),
+    ...only(await presentAll(actor, found)),
     closingReason: finding.closingReason,
     closedOn: finding.closedOn,
     previousId: finding.previousId,

@@ -24,13 +24,21 @@ const testsOf = (worker: string, model: string, size: string, date: string, cond
 export const fitInForce = (worker: string, model: string, size: string, date: string): string =>
   `(${testsOf(worker, model, size, date, ratesPair("v"))})`;
 
-/** The revision that says whether the active part does its work on this worker. */
+/** Two microphones were at one ear alone. `fit` is a revision's alias. */
+const isOneEarChecked = (fit: string) =>
+  `(${fit}.facts #>> '{bands,left}' IS NULL) <> (${fit}.facts #>> '{bands,right}' IS NULL)`;
+
+/**
+ * The revision that says whether the active part does its work on this worker: each cup cancels for itself, so one ear
+ * alone can fail it but not pass it.
+ */
 export const activeCheckInForce = (
   worker: string,
   model: string,
   size: string,
   date: string,
-): string => `(${testsOf(worker, model, size, date, "v.active_passed IS NOT NULL")})`;
+): string =>
+  `(${testsOf(worker, model, size, date, `(v.active_passed IS FALSE OR (v.active_passed AND NOT (${isOneEarChecked("v")})))`)})`;
 
 /** Test data of two models worn together. */
 export const combinationInForce = (inner: string, outer: string, date: string): string =>

@@ -87,7 +87,7 @@ export async function protectorChoice(
     creditsActivePart: settings.creditsActivePart,
     singles: rank(singles, ofAll),
     pairs: rank(pairs, ofAll)
-      .filter(({ excludedBy }) => excludedBy?.code !== "no-data")
+      .filter(({ wornDb }) => wornDb !== null)
       .slice(0, MOST_PAIRS),
     wearers: wearers.slice(0, MOST_WEARERS),
     hasMoreWearers: wearers.length > MOST_WEARERS,

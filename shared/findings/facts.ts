@@ -1,5 +1,6 @@
 import type { I18n } from "@lingui/core";
 import type { ProtectorWord } from "../acoustics/types";
+import type { FindingRow } from "../schemas/finding";
 
 /** What a finding stores beside its kind: codes, names and numbers. An older finding may lack any of them. */
 export type FindingFacts = Readonly<Record<string, unknown>>;
@@ -19,6 +20,15 @@ export interface ProposedDevices {
   readonly names: readonly string[];
   readonly isHeld: boolean;
 }
+
+/** What was noticed, with what is to be done about it as things stand now. */
+export const factsToday = ({
+  facts,
+  today,
+}: {
+  readonly facts: FindingFacts;
+  readonly today: FindingRow["today"];
+}): FindingFacts => (today?.is === "asked" ? { ...facts, ...today.proposal } : facts);
 
 export const textOf = (facts: FindingFacts, name: string): string | null => {
   const value = facts[name];

@@ -138,6 +138,21 @@ export function orderSentence(
   }
 }
 
+/** The order of a finding that the usual day, as things stand now, no longer shows. */
+export const inOrderSentence = (i18n: I18n): string =>
+  i18n.t("See that the next day is in order, then close it");
+
+/** A level at the ear with the word for what is worn: "79.7, Good"; null where the level is not known. */
+export function atEarFigure(
+  locale: Locale,
+  { atEarDb, word }: { readonly atEarDb: number | null; readonly word: ProtectorWord | null },
+  wordText: (word: ProtectorWord) => string,
+): string | null {
+  if (atEarDb === null) return null;
+  const level = formatLevel(atEarDb, locale);
+  return word ? `${level}, ${wordText(word)}` : level;
+}
+
 /** What the ordered remedy would bring: "79.7, Good"; null where none is proposed or its figure is not known. */
 export function remedyFigure(
   locale: Locale,
@@ -145,9 +160,7 @@ export function remedyFigure(
   wordText: (word: ProtectorWord) => string,
 ): string | null {
   const remedy = remedyOf(facts);
-  if (!remedy || remedy.atEarDb === null) return null;
-  const level = formatLevel(remedy.atEarDb, locale);
-  return remedy.word ? `${level}, ${wordText(remedy.word)}` : level;
+  return remedy && atEarFigure(locale, remedy, wordText);
 }
 
 /** What the program noticed, for officers and supervisors, without a full stop. */

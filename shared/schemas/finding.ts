@@ -69,6 +69,22 @@ export const DayFigures = z.object({
 });
 export type DayFigures = z.infer<typeof DayFigures>;
 
+/**
+ * What a finding about what is worn comes to on the usual day that comes next: in order as things stand now, with the level
+ * at the ear; or still at fault, with what would put that day right, as facts have it.
+ */
+const FindingToday = z.discriminatedUnion("is", [
+  z.object({
+    is: z.literal("in-order"),
+    atEarDb: z.number().nullable(),
+    word: DayFigures.shape.word,
+  }),
+  z.object({
+    is: z.literal("asked"),
+    proposal: z.object({ remedy: z.unknown(), left: z.unknown() }),
+  }),
+]);
+
 export const FindingRow = z.object({
   id: z.uuid(),
   kind: FindingKind,
@@ -77,6 +93,8 @@ export const FindingRow = z.object({
   useKey: z.string(),
   /** Codes and numbers from which the sentence is made. */
   facts: z.record(z.string(), z.unknown()),
+  /** Null where its own facts are all that is known: it is not about what is worn, or waits for nobody. */
+  today: FindingToday.nullable(),
   firstDate: IsoDate,
   lastDate: IsoDate,
   /** Days on which it showed; of a group the days of each worker. */

@@ -2,11 +2,26 @@ import { useLingui } from "@lingui/react";
 import { type UseQueryResult, useQuery } from "@tanstack/react-query";
 import { useState } from "react";
 import { useParams } from "react-router-dom";
-import type { RuleSetVersion } from "../../shared/acoustics/types";
+import type {
+  ProtectorWord as ProtectorWordKey,
+  RuleSetVersion,
+} from "../../shared/acoustics/types";
 import { citationOf, criterionValue, levelBasis, ruleSetOf } from "../../shared/findings/basis";
-import { handoutsOf, listWords, protectorNames, remedyOf } from "../../shared/findings/facts";
+import {
+  factsToday,
+  handoutsOf,
+  listWords,
+  protectorNames,
+  remedyOf,
+} from "../../shared/findings/facts";
 import { NEWS_FOR_DAYS } from "../../shared/findings/notified";
-import { noticedSentence, orderSentence, remedyFigure } from "../../shared/findings/sentences";
+import {
+  atEarFigure,
+  inOrderSentence,
+  noticedSentence,
+  orderSentence,
+  remedyFigure,
+} from "../../shared/findings/sentences";
 import { findingStateWord, findingWord } from "../../shared/findings/words";
 import { formatDate, formatInstant, formatShortDate } from "../../shared/format/date";
 import { formatLevel } from "../../shared/format/level";
@@ -74,9 +89,7 @@ function Finding({ finding }: { finding: FindingView }) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const { worker, kind, facts } = finding;
-  const order = orderSentence(i18n, locale, kind, facts);
-  const figure = remedyFigure(locale, facts, (word) => protectorWordText(i18n, word));
-  const remedy = remedyOf(facts);
+  const remedy = finding.today?.is === "in-order" ? null : remedyOf(factsToday(finding));
   const ruleSet = ruleSetBehind(finding);
   const who = worker?.name ?? finding.subjectName;
   const followUp = useQuery(findingQueries.followUp(finding.id));
@@ -154,10 +167,7 @@ function Finding({ finding }: { finding: FindingView }) {
         </Section>
         {finding.state !== "closed" && (
           <Section title={i18n.t("What to do today")} id="today">
-            <p className="finding-order">
-              <b>{order}.</b>{" "}
-              {figure && i18n.t("Worn throughout that would be {figure}.", { figure })}
-            </p>
+            <WhatToDo finding={finding} />
           </Section>
         )}
         {isAboutNoise(finding) && (
@@ -212,6 +222,31 @@ function Finding({ finding }: { finding: FindingView }) {
           })}
       </Folio>
     </>
+  );
+}
+
+function WhatToDo({ finding }: { finding: FindingView }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  const { kind, today } = finding;
+  const wordText = (word: ProtectorWordKey) => protectorWordText(i18n, word);
+  if (today?.is === "in-order") {
+    const figure = atEarFigure(locale, today, wordText);
+    return (
+      <p className="finding-order">
+        <b>{inOrderSentence(i18n)}.</b>{" "}
+        {i18n.t("Nothing has to be given: with what is worn now the usual day is in order.")}{" "}
+        {figure && i18n.t("It would be {figure}.", { figure })}
+      </p>
+    );
+  }
+  const facts = factsToday(finding);
+  const figure = remedyFigure(locale, facts, wordText);
+  return (
+    <p className="finding-order">
+      <b>{orderSentence(i18n, locale, kind, facts)}.</b>{" "}
+      {figure && i18n.t("Worn throughout that would be {figure}.", { figure })}
+    </p>
   );
 }
 

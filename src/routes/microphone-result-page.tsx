@@ -204,6 +204,7 @@ function Keep({ view, onLeave }: { view: MicrophoneCheckView; onLeave: () => voi
         needDb={desk.data.need.needDb}
         others={others}
         isRated={isRated}
+        hasActivePassed={analysis?.active?.hasPassed ?? false}
         onKept={({ workerId: id }) => {
           onLeave();
           void navigate(paths.microphoneResult(id, view.id), { replace: true });

@@ -188,6 +188,30 @@ describe("an order beside the day that is expected", () => {
     expect(await expected()).toMatchObject({ order: null, figures: { word: "good" } });
   });
 
+  test("is the one of the finding’s page and of the list, and so is that nothing is left to be given", async () => {
+    const { client, worker, saveDay, passCheck, expected } = await buildRumble(-4);
+    await saveDay(-5);
+    const remedy = (await expected()).order.facts.remedy;
+    const listed = async () =>
+      (await client.get(`/findings?workerId=${worker.id}&kind=protects-too-little`)).body.rows[0];
+    const found = await listed();
+    expect(found.today).toMatchObject({ is: "asked", proposal: { remedy, left: null } });
+    await passCheck(-1);
+    expect((await listed()).today).toMatchObject({ is: "in-order", word: "good" });
+    const { body } = await client.get(`/findings/${found.id}`);
+    expect(body.today).toMatchObject({ is: "in-order", word: "good" });
+    expect(body.today.atEarDb).toBeCloseTo((await expected()).figures.atEarDb, 9);
+    // What was noticed stays as it was.
+    expect(body.facts).toEqual(found.facts);
+    await client.send({
+      method: "post",
+      path: `/findings/${found.id}/steps`,
+      body: { kind: "mark-done" },
+      revision: body.revision,
+    });
+    expect((await listed()).today).toBeNull();
+  });
+
   test("stays where a day since was in order, and the day to come is not", async () => {
     const { worker, saveDay, passCheck, expected, site } = await buildRumble(-4);
     await saveDay(-5);

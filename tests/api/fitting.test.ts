@@ -434,6 +434,19 @@ describe("an active muff at the desk and among what is chosen from", () => {
     expect(await desk()).toMatchObject(off);
   });
 
+  test("one ear that passed credits nothing, and takes nothing from what the pair has passed", async () => {
+    const { worker, active, desk, word } = await openActive(true);
+    const check = { worker, model: active, parDb: null };
+    await buildFitTest({ ...check, activePassed: true, checkedEar: "left" });
+    expect(await desk()).toMatchObject({ word: "too-little", isActiveCredited: false });
+    expect(await word()).toBe("too-little");
+    await buildFitTest({ ...check, activePassed: true, testedOn: daysFromToday(-2) });
+    expect(await desk()).toMatchObject({ word: "good", isActiveCredited: true });
+    // One ear alone is enough to fail it.
+    await buildFitTest({ ...check, activePassed: false, checkedEar: "right", testedOn: today });
+    expect(await desk()).toMatchObject({ isActiveCredited: false });
+  });
+
   test("no credit at the site: the part off, whatever has passed", async () => {
     const { worker, active, desk, choice, word } = await openActive(false);
     await buildFitTest({ worker, model: active, parDb: null, activePassed: true });

@@ -17,8 +17,13 @@ interface FitOverrides {
   needDb?: number | null;
   hasPassed?: boolean | null;
   activePassed?: boolean | null;
+  /** Two microphones were at this ear alone. */
+  checkedEar?: "left" | "right";
   size?: string;
 }
+
+const NO_BAND = Array.from({ length: 8 }, () => null);
+const NOTHING_FOUND = { noiseReductionDb: NO_BAND, attenuationDb: NO_BAND, activeDb: null };
 
 /** A fit of a worker that passed by 5 dB, unless told otherwise; nothing follows from it by itself. */
 export async function buildFitTest(overrides: FitOverrides = {}): Promise<FitTest> {
@@ -26,6 +31,7 @@ export async function buildFitTest(overrides: FitOverrides = {}): Promise<FitTes
   const { organizationId, siteId, id: workerId } = worker;
   const model = overrides.model ?? (await buildProtector({ organizationId }));
   const { parDb = 25, needDb = 20, activePassed, size, testedOn = daysFromToday(-1) } = overrides;
+  const { checkedEar } = overrides;
   const { hasPassed = parDb === null || needDb === null ? null : parDb >= needDb } = overrides;
   const id = await insert("fit_tests", {
     organizationId,
@@ -44,7 +50,7 @@ export async function buildFitTest(overrides: FitOverrides = {}): Promise<FitTes
       leftDb: [parDb ?? 20],
       rightDb: [parDb ?? 20],
       methodSdDb: 0,
-      bands: null,
+      bands: checkedEar ? { left: null, right: null, [checkedEar]: NOTHING_FOUND } : null,
     }),
     confidencePct: 84,
     leftDb: parDb,

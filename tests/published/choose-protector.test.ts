@@ -326,11 +326,23 @@ describe("several noises", () => {
     expect(found[2]!.marginDb).toBeLessThan(0);
   });
 
-  test("none on record: nothing to say", () => {
+  test("none that asks for one: nothing to say, and nothing that its data would have to say", () => {
     const [found] = new ProtectorChoice([offer("a", { snrDb: 22 })], EU, ENERGY_LAW).for(
       wearer(0, { noises: [] }),
     );
-    expect(found).toMatchObject({ word: null, wornDb: null, excludedBy: { code: "no-data" } });
+    expect(found).toMatchObject({ word: null, wornDb: null, excludedBy: null });
+    const [inHelmet] = new ProtectorChoice(
+      [
+        offer(
+          "a",
+          { snrDb: 22 },
+          { worksWith: { helmet: false, glasses: null, respirator: null } },
+        ),
+      ],
+      EU,
+      ENERGY_LAW,
+    ).for(wearer(0, { noises: [], wornGear: ["helmet"] }));
+    expect(inHelmet).toMatchObject({ excludedBy: { code: "gear", gear: "helmet" } });
   });
 });
 

@@ -384,12 +384,13 @@ const fitOf = ({ offer }: Prepared, { fits }: Wearer): OwnFit | null =>
 /** Null: nothing speaks against it. */
 function exclusionOf(
   { offer }: Prepared,
-  { wornGear }: Wearer,
+  { wornGear, noises }: Wearer,
   atEar: AtEar | null,
 ): RankedProtector["excludedBy"] {
   if (offer.isArchived) return ARCHIVED;
   for (const gear of wornGear) if (offer.worksWith[gear] === false) return { code: "gear", gear };
-  return atEar === null ? NO_DATA : null;
+  // Where nothing asks for a protector, nothing is asked of its data.
+  return atEar === null && noises.some(({ isBare }) => !isBare) ? NO_DATA : null;
 }
 
 const ARCHIVED = { code: "archived", gear: null } as const;

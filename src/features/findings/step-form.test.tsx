@@ -27,6 +27,7 @@ const view = (overrides: Partial<FindingView> = {}): FindingView =>
     workersCount: 1,
     dueOn: "2026-12-01",
     rulesUntil: null,
+    today: null,
     wentUp: null,
     siteId: id,
     worker: null,

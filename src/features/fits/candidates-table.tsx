@@ -78,7 +78,9 @@ export function CandidatesTable({
             {row.excludedBy
               ? exclusionWord(i18n, row.excludedBy)
               : [
-                  decidedWord(i18n, row.decidedBy),
+                  // The first of those of which nothing is known is not the best of them.
+                  (row.decidedBy !== "first" || row.wornDb !== null) &&
+                    decidedWord(i18n, row.decidedBy),
                   (row.decidedBy === "margin" || row.decidedBy === "least-margin") &&
                     row.marginDb !== null &&
                     formatLevelChange(row.marginDb, locale),

@@ -1,7 +1,7 @@
 import { expect, test } from "vitest";
-import type { Candidate } from "../../../shared/schemas/fit";
+import type { Candidate, EarBands, FitTestView } from "../../../shared/schemas/fit";
 import { testI18n } from "../../lib/test-i18n";
-import { judgedByWord, judgedDb } from "./fit-words";
+import { activeWord, judgedByWord, judgedDb } from "./fit-words";
 
 const i18n = testI18n();
 const active = { modelId: "m", wornDb: 88, wornActiveDb: 78, twaDb: null } as Candidate;
@@ -30,4 +30,14 @@ test("the level beside a word is the one that the word is about", () => {
   expect(judgedDb(off)).toBe(88);
   expect(judgedDb({ ...active, isActiveCredited: true })).toBe(78);
   expect(judgedDb({ ...off, twaDb: 75.9 })).toBe(75.9);
+});
+
+test("a passed check of one ear alone says which ear was not checked", () => {
+  const ear = { isRelative: false } as EarBands;
+  const checked = (left: EarBands | null, right: EarBands | null, activePassed = true) =>
+    activeWord(i18n, { activePassed, facts: { bands: { left, right } } } as FitTestView);
+  expect(checked(ear, ear)).toBe("active part passed");
+  expect(checked(ear, null)).toBe("active part passed on the left, not checked on the right");
+  expect(checked(null, ear)).toBe("active part passed on the right, not checked on the left");
+  expect(checked(ear, null, false)).toBe("active part not passed");
 });

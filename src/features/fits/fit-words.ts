@@ -33,8 +33,17 @@ export function notRatedWord(i18n: I18n, { parDb, facts }: FitTestView): string 
   return isRelative ? i18n.t("relative analysis only") : i18n.t("not rated");
 }
 
-export const activeWord = (i18n: I18n, { activePassed }: FitTestView): string =>
-  activePassed ? i18n.t("active part passed") : i18n.t("active part not passed");
+/** Of a check of one ear alone that it passed: the other cup cancels for itself, and none of it is credited. */
+export const isHalfChecked = ({ activePassed, facts: { bands } }: FitTestView): boolean =>
+  activePassed === true && bands !== null && (bands.left === null) !== (bands.right === null);
+
+export function activeWord(i18n: I18n, test: FitTestView): string {
+  if (!test.activePassed) return i18n.t("active part not passed");
+  if (!isHalfChecked(test)) return i18n.t("active part passed");
+  return test.facts.bands?.left
+    ? i18n.t("active part passed on the left, not checked on the right")
+    : i18n.t("active part passed on the right, not checked on the left");
+}
 
 /** Whether it fits; of a test that only checked the active part, whether that does its work. */
 export const saysWord = (i18n: I18n, test: FitTestView): string =>

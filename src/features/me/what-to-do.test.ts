@@ -67,6 +67,7 @@ const finding = (facts: Partial<OwnFinding> = {}): OwnFinding => ({
   criterion: "",
   useKey: "",
   facts: {},
+  today: null,
   firstDate: "2026-11-30",
   lastDate: "2026-11-30",
   daysCount: 1,
@@ -181,6 +182,16 @@ describe("what to do", () => {
       say(day({ date: "2026-12-01", verdictAtEar }), [protector(), given("Grinding")], [over]);
     expect(since("under")).not.toContain(asksOver[0]);
     expect(since("cant-tell-yet")).toEqual(asksOver);
+  });
+
+  test("what the usual day to come no longer shows asks for nothing; what it asks for goes by that day", () => {
+    const inOrder = { is: "in-order", atEarDb: 78, word: "good" } as const;
+    expect(say(day(), [protector()], [finding({ ...tooLittle, today: inOrder })])).toEqual(
+      say(day(), [protector()]),
+    );
+    const remedy = { modelIds: ["w"], names: ["Willow plug"], isHeld: false, inTasks: [] };
+    const today = { is: "asked", proposal: { remedy, left: null } } as const;
+    expect(say(day(), [protector()], [finding({ ...tooLittle, today })])[0]).toMatch(/Willow plug/);
   });
 
   test("what is asked for everywhere says that it is not for where another was given since", () => {

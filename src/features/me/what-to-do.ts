@@ -1,5 +1,5 @@
 import type { I18n } from "@lingui/core";
-import { protectorNames, textOf } from "../../../shared/findings/facts";
+import { factsToday, protectorNames, textOf } from "../../../shared/findings/facts";
 import { foldOrders, ORDER_KINDS } from "../../../shared/findings/orders";
 import { workerSentence } from "../../../shared/findings/worker-sentence";
 import type { Locale } from "../../../shared/i18n/index";
@@ -50,8 +50,9 @@ function wornIn(protectors: readonly OwnProtector[], taskName: string): OwnProte
  * was given since lay under the limit.
  */
 function asked({ findings, protectors, lastDay }: Known): OwnFinding[] {
-  const isAnswered = ({ kind, lastDate, facts }: OwnFinding) => {
+  const isAnswered = ({ kind, lastDate, facts, today }: OwnFinding) => {
     if (!ABOUT_PROTECTOR.has(kind)) return false;
+    if (today?.is === "in-order") return true;
     const taskName = textOf(facts, "taskName");
     const concerned = taskName === null ? protectors : wornIn(protectors, taskName);
     const isGivenSince = ({ fromDate }: OwnProtector) => fromDate > lastDate;
@@ -130,7 +131,7 @@ export function whatToDo(i18n: I18n, locale: Locale, known: Known): [string, ...
   const isProtectorInDoubt = open.some(({ kind }) => ABOUT_PROTECTOR.has(kind));
   const sentences = [
     ...open.map((one) =>
-      workerSentence(i18n, locale, one.kind, one.facts, givenFor(one, protectors)),
+      workerSentence(i18n, locale, one.kind, factsToday(one), givenFor(one, protectors)),
     ),
     ...(isProtectorInDoubt ? [] : whatToWear(i18n, protectors)),
   ];

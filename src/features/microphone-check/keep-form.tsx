@@ -32,6 +32,7 @@ export function KeepCheckForm({
   needDb,
   others,
   isRated,
+  hasActivePassed,
   onKept,
   onCancel,
 }: {
@@ -45,6 +46,7 @@ export function KeepCheckForm({
   others: readonly (Choice & { readonly testedOn: string })[];
   /** A rating was found; else only whether the active part does its work is kept. */
   isRated: boolean;
+  hasActivePassed: boolean;
   onKept: (view: MicrophoneCheckView) => void;
   onCancel: () => void;
 }) {
@@ -72,6 +74,13 @@ export function KeepCheckForm({
         <p>
           {i18n.t(
             "Only the check of the active part is kept: no rating comes of it, and the fit that counts stays what it was.",
+          )}
+        </p>
+      )}
+      {hasActivePassed && !joined && (
+        <p>
+          {i18n.t(
+            "Each cup cancels for itself: the active part counts once the other ear has passed as well.",
           )}
         </p>
       )}

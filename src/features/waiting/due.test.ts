@@ -20,6 +20,7 @@ const finding = (overrides: Partial<FindingRow> = {}): FindingRow =>
     workersCount: 1,
     dueOn: today,
     rulesUntil: null,
+    today: null,
     wentUp: null,
     siteId: id(90),
     worker: { id: id(50), name: "R. Szabó", employeeNumber: "3425" },

@@ -1,7 +1,7 @@
 import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { type ReactNode, useMemo } from "react";
-import { handoutsOf, remedyOf } from "../../../shared/findings/facts";
+import { factsToday, handoutsOf, remedyOf } from "../../../shared/findings/facts";
 import { findingStateWord, findingWord } from "../../../shared/findings/words";
 import { withinSentence } from "../../../shared/format/words";
 import type { FindingRow } from "../../../shared/schemas/finding";
@@ -38,11 +38,9 @@ function groupLabel(i18n: I18n, group: DueGroup): string {
 }
 
 /** The address where a finding is acted on, and the verb that leads there. */
-function actionOf(
-  i18n: I18n,
-  { kind, worker, facts, id }: FindingRow,
-): { label: string; to: string } {
-  const remedy = remedyOf(facts);
+function actionOf(i18n: I18n, finding: FindingRow): { label: string; to: string } {
+  const { kind, worker, facts, today, id } = finding;
+  const remedy = today?.is === "in-order" ? null : remedyOf(factsToday(finding));
   switch (kind) {
     case "no-protector":
     case "over-limit-at-ear":
