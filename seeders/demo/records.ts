@@ -116,3 +116,12 @@ export const ERASED = {
   proposedBy: "d.calloway",
   approvedBy: "t.abernathy",
 } as const;
+
+/** A site that is to be sold: one proposed to hand its records over, and somebody else has to approve it. */
+export const TRANSFER = {
+  site: "kettle-bend",
+  by: "d.calloway",
+  successor: "Saltmarch Plate Company",
+  passesInDays: 130,
+  note: "The plate shop is sold with its people. They ask for the records from the first day on.",
+} as const;

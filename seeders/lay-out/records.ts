@@ -9,6 +9,7 @@ import { approveErasure, proposeErasure } from "../../server/commands/propose-er
 import { recordDrawRead } from "../../server/commands/record-draw-read";
 import { recordRefusal } from "../../server/commands/record-refusal";
 import { storeFile } from "../../server/commands/store-file";
+import { proposeTransfer } from "../../server/commands/transfer-records";
 import { erasePeople } from "../../server/jobs/erase-people";
 import { execute } from "../../server/lib/db";
 import { fileStore } from "../../server/lib/file-store";
@@ -18,6 +19,7 @@ import { frameOf, originOf } from "../../server/reports/frame";
 import { layOut } from "../../server/reports/lay-out";
 import { createI18n } from "../../shared/i18n";
 import { FILE_KINDS } from "../../shared/schemas/outing";
+import { addDays } from "../../shared/time/zone";
 import {
   AUDITED_DAYS_AGO,
   CALENDAR_FEEDS,
@@ -27,6 +29,7 @@ import {
   PAPER,
   REFUSALS,
   TOKENS,
+  TRANSFER,
 } from "../demo/records";
 import { type Demo, known, siteOfWorker } from "./programme";
 
@@ -45,6 +48,16 @@ export async function layOutRecords(demo: Demo, formerIds: ReadonlyMap<string, s
   await layOutRefusals(demo);
   await layOutDraw(demo);
   await layOutErasure(demo, known(formerIds, ERASED.number));
+  const { site, by, successor, passesInDays, note } = TRANSFER;
+  const { today } = demo.calendar(site);
+  await demo.at(demo.now, () =>
+    proposeTransfer(known(demo.actors, by), {
+      siteId: known(demo.sites, site).id,
+      successor,
+      passesOn: addDays(today, passesInDays),
+      note,
+    }),
+  );
 }
 
 async function layOutTokens(demo: Demo): Promise<void> {

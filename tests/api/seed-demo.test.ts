@@ -138,6 +138,12 @@ test("two guests read for a while: of an agency, and a visitor", async () => {
   ]);
 });
 
+test("a site's records wait for somebody else to approve that they are handed over", async () => {
+  expect(await ask(0, "SELECT state, approved_by IS NULL FROM record_transfers")).toEqual([
+    "proposed | true",
+  ]);
+});
+
 test("records are looked at, reported and erased at the end of their term", async () => {
   expect(
     await ask(
