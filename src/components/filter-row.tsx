@@ -1,4 +1,5 @@
 import { type ReactNode, useId } from "react";
+import { DateInput } from "./date-input";
 import type { Choice } from "./form";
 import "../styles/filter-row.css";
 
@@ -63,6 +64,26 @@ export function FilterText({
         value={value}
         onChange={(event) => onChange(event.target.value)}
       />
+    </span>
+  );
+}
+
+/** A first or a last day; empty: it narrows nothing. */
+export function FilterDate({
+  label,
+  value,
+  onChoose,
+}: {
+  label: string;
+  /** ISO date, or empty. */
+  value: string;
+  onChoose: (isoDate: string) => void;
+}) {
+  const id = useId();
+  return (
+    <span className="filter">
+      <label htmlFor={id}>{label}</label>
+      <DateInput id={id} value={value} onChoose={onChoose} />
     </span>
   );
 }

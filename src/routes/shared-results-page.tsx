@@ -1,11 +1,16 @@
 import { useLingui } from "@lingui/react";
 import { useInfiniteQuery } from "@tanstack/react-query";
+import { useState } from "react";
+import { useSearchParams } from "react-router-dom";
 import { formatShortDate } from "../../shared/format/date";
 import { isolate } from "../../shared/i18n/isolate";
+import { IsoDate } from "../../shared/schemas/common";
 import type { SharedResult } from "../../shared/schemas/employer-share";
 import { type DataColumn, DataTable } from "../components/data-table";
 import { Empty } from "../components/empty";
+import { FilterDate, FilterRow } from "../components/filter-row";
 import { LevelFigure } from "../components/level-figure";
+import { TextButton } from "../components/link";
 import { Folio, PageBody, PageHead } from "../components/page";
 import { Verdict } from "../components/verdict";
 import { shareQueries } from "../features/employer-shares/queries";
@@ -14,11 +19,27 @@ import { useLocale } from "../lib/i18n";
 import { untilText } from "../lib/until-text";
 import "../styles/people.css";
 
+/** A day in the address; what is none narrows nothing. */
+const dayIn = (search: URLSearchParams, name: string): string | undefined =>
+  IsoDate.safeParse(search.get(name)).data;
+
 /** What somebody of an employer reads: the results of its people, and nothing to be changed. */
 export function Component() {
   const { i18n } = useLingui();
   const locale = useLocale();
-  const list = useInfiniteQuery(shareQueries.results);
+  const [search, setSearch] = useSearchParams();
+  const [from, to] = [dayIn(search, "from"), dayIn(search, "to")];
+  const [cleared, setCleared] = useState(0);
+  const narrow = (name: "from" | "to", date: string) =>
+    setSearch(
+      (before) => {
+        const next = new URLSearchParams(before);
+        next.set(name, date);
+        return next;
+      },
+      { replace: true },
+    );
+  const list = useInfiniteQuery(shareQueries.results({ from, to }));
   const rows = list.data?.pages.flatMap((page) => page.rows) ?? [];
   const shares = list.data?.pages[0]?.shares ?? [];
   const showsSite = new Set(shares.map(({ siteName }) => siteName)).size > 1;
@@ -98,6 +119,29 @@ export function Component() {
             </a>
           }
         />
+        {/* Fields keep what is typed: all of them anew once nothing narrows the list any more. */}
+        <FilterRow key={cleared} label={i18n.t("Which days")}>
+          <FilterDate
+            label={i18n.t("From")}
+            value={from ?? ""}
+            onChoose={(date) => narrow("from", date)}
+          />
+          <FilterDate
+            label={i18n.t("Until")}
+            value={to ?? ""}
+            onChoose={(date) => narrow("to", date)}
+          />
+          {(from || to) && (
+            <TextButton
+              onClick={() => {
+                setSearch({}, { replace: true });
+                setCleared((times) => times + 1);
+              }}
+            >
+              {i18n.t("All days")}
+            </TextButton>
+          )}
+        </FilterRow>
         <DataTable
           caption={i18n.t("Results of your people")}
           columns={columns}
@@ -112,7 +156,15 @@ export function Component() {
             isLoading: list.isFetchingNextPage,
             onMore: () => void list.fetchNextPage(),
           }}
-          empty={<Empty title={i18n.t("No result of your people is on record yet.")} />}
+          empty={
+            <Empty
+              title={
+                from || to
+                  ? i18n.t("No result of your people is on record for these days.")
+                  : i18n.t("No result of your people is on record yet.")
+              }
+            />
+          }
         />
       </PageBody>
       <Folio

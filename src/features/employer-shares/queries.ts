@@ -1,5 +1,6 @@
 import {
   infiniteQueryOptions,
+  keepPreviousData,
   queryOptions,
   useMutation,
   useQueryClient,
@@ -25,17 +26,19 @@ export const shareQueries = {
           signal,
         }),
     }),
-  results: infiniteQueryOptions({
-    queryKey: ["shared-results"],
-    queryFn: ({ pageParam, signal }) =>
-      api.get("/shared-results", {
-        query: { cursor: pageParam },
-        schema: ownReply<SharedResultPage>("rows", "next", "shares"),
-        signal,
-      }),
-    initialPageParam: undefined as string | undefined,
-    getNextPageParam: ({ next }) => next ?? undefined,
-  }),
+  results: (days: { from: string | undefined; to: string | undefined }) =>
+    infiniteQueryOptions({
+      queryKey: ["shared-results", days],
+      queryFn: ({ pageParam, signal }) =>
+        api.get("/shared-results", {
+          query: { ...days, cursor: pageParam },
+          schema: ownReply<SharedResultPage>("rows", "next", "shares"),
+          signal,
+        }),
+      initialPageParam: undefined as string | undefined,
+      getNextPageParam: ({ next }) => next ?? undefined,
+      placeholderData: keepPreviousData,
+    }),
 };
 
 export function useEndShare(id: string, onEnded: () => void) {
