@@ -5,13 +5,14 @@ import {
   isSettled,
 } from "../../shared/findings/expected";
 import { WORN_KINDS } from "../../shared/findings/orders";
-import { type Proposal, proposeRemedy } from "../../shared/findings/remedy";
+import type { Proposal } from "../../shared/findings/remedy";
 import type { FindingKind, FindingRow, FindingState } from "../../shared/schemas/finding";
 import { rows } from "../lib/db";
 import { groupBy } from "../lib/group-by";
 import { comingDays } from "./coming-days";
 import { evaluateExpected, type PersonExpected, peopleExpected } from "./expected-days";
 import { knownOnWorkers, onWorkerKey } from "./on-worker";
+import { proposalsFrom } from "./proposals";
 import { registerOn } from "./protector-register";
 import { rulesOn } from "./site-settings";
 
@@ -35,14 +36,11 @@ export async function outlooksOf(
   }));
   const faulty = days.filter(({ faults }) => faults.length > 0);
   const known = await knownOnWorkers(faulty);
-  const register = faulty.length > 0 ? await registerOn(date) : [];
+  const propose = proposalsFrom(faulty.length > 0 ? await registerOn(date) : []);
   return new Map(
     days.map((one): [string, Outlook] => {
       const { workerId, day, faults } = one;
-      const proposal =
-        faults.length > 0
-          ? proposeRemedy(day.input, day.governing, register, known.get(onWorkerKey(one)))
-          : null;
+      const proposal = faults.length > 0 ? propose(day, known.get(onWorkerKey(one))) : null;
       return [workerId, { day, faults, proposal }];
     }),
   );
