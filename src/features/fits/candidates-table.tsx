@@ -37,6 +37,10 @@ function MarginNote({ candidates }: { candidates: readonly Candidate[] }) {
   );
 }
 
+/** The first of those of which nothing is known, or of which none will do, suits no better than the others. */
+const doesSuit = ({ word, wornDb }: Candidate): boolean =>
+  wornDb !== null && word !== "too-little" && word !== "too-much";
+
 /** The register in the order in which it suits a noise, each with the comparison that decided. */
 export function CandidatesTable({
   candidates,
@@ -78,9 +82,7 @@ export function CandidatesTable({
             {row.excludedBy
               ? exclusionWord(i18n, row.excludedBy)
               : [
-                  // The first of those of which nothing is known is not the best of them.
-                  (row.decidedBy !== "first" || row.wornDb !== null) &&
-                    decidedWord(i18n, row.decidedBy),
+                  (row.decidedBy !== "first" || doesSuit(row)) && decidedWord(i18n, row.decidedBy),
                   (row.decidedBy === "margin" || row.decidedBy === "least-margin") &&
                     row.marginDb !== null &&
                     formatLevelChange(row.marginDb, locale),
