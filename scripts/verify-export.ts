@@ -3,7 +3,7 @@
  * Checks a year's file (ZIP) without database or network: hashes, counts, and every result derived again from its inputs.
  * Exit code 1 where anything differs.
  */
-import { openAsBlob } from "node:fs";
+import { existsSync, openAsBlob } from "node:fs";
 import { checkYearFile, isSound } from "../shared/year-file/check-year-file";
 import { Failure, runMain } from "./lib/failure.mjs";
 
@@ -21,12 +21,19 @@ const PROBLEMS = {
   "not-computable": "nothing can be computed from its inputs",
 };
 
+async function open(file: string): Promise<Blob> {
+  if (!existsSync(file)) throw new Failure(`there is no file at ${file}`);
+  try {
+    return await openAsBlob(file);
+  } catch {
+    throw new Failure(`${file} can't be read`);
+  }
+}
+
 await runMain(async () => {
   const [file, ...more] = process.argv.slice(2);
   if (!file || more.length > 0) throw new Failure("say one file:  npm run verify:export -- FILE");
-  const blob = await openAsBlob(file).catch(() => {
-    throw new Failure(`${file} can't be read`);
-  });
+  const blob = await open(file);
   const report = await checkYearFile(blob);
   if (report.broken !== null) throw new Failure(`${file} is not whole: ${report.broken}`);
   const { manifest, files, rederived, imported, differing, differingCount } = report;

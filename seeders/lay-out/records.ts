@@ -11,6 +11,7 @@ import { recordRefusal } from "../../server/commands/record-refusal";
 import { storeFile } from "../../server/commands/store-file";
 import { proposeTransfer } from "../../server/commands/transfer-records";
 import { erasePeople } from "../../server/jobs/erase-people";
+import { sealTrail } from "../../server/lib/audit";
 import { execute } from "../../server/lib/db";
 import { fileStore } from "../../server/lib/file-store";
 import { Finding } from "../../server/models/finding";
@@ -133,8 +134,15 @@ async function layOutDraw(demo: Demo): Promise<void> {
   });
 }
 
+/** The trail as far as it has come, for its head to stand on what is issued next. */
+async function sealSoFar(demo: Demo): Promise<void> {
+  const limit = 5000;
+  while ((await demo.at(demo.now, () => sealTrail(demo.organizationId, limit))) === limit);
+}
+
 /** Both sites' year as it stands, once all else is laid out: nothing of it has changed since. */
 export async function layOutYearReports(demo: Demo): Promise<void> {
+  await sealSoFar(demo);
   for (const [site, { id: siteId }] of demo.sites)
     await demo.at(demo.now, () =>
       issueYearReport(demo.officer(site), { siteId, year: auditedYear(demo) }),

@@ -2,6 +2,7 @@ import { recordAuditMany } from "../lib/audit";
 import { todayAt } from "../lib/calendar";
 import { execute, rows } from "../lib/db";
 import { addJob } from "../lib/jobs";
+import { canBeToldOfOverdue, isOverdueFinding } from "../lib/overdue";
 
 interface Overdue {
   id: string;
@@ -21,13 +22,13 @@ export async function escalateOverdue(organizationId: string): Promise<void> {
     recipientName: string;
   }>(
     `SELECT s.id, s.time_zone AS "timeZone", u.id AS "recipientId", u.name AS "recipientName"
-     FROM sites s JOIN users u ON u.id = s.escalation_user_id WHERE u.revoked_at IS NULL AND u.email IS NOT NULL`,
+     FROM sites s JOIN users u ON u.id = s.escalation_user_id WHERE ${canBeToldOfOverdue("u")}`,
   );
   for (const site of sites) {
     const today = todayAt(site.timeZone);
     const overdue = await rows<Overdue>(
       `SELECT f.id, f.state, f.due_on::text AS "dueOn" FROM findings f
-       WHERE f.site_id = :siteId AND f.state IN ('new', 'in-hand', 'came-back') AND f.due_on < :today AND f.escalation_id IS NULL
+       WHERE f.site_id = :siteId AND ${isOverdueFinding("f", ":today")} AND f.escalation_id IS NULL
        ORDER BY f.due_on, f.id FOR UPDATE`,
       { siteId: site.id, today },
     );

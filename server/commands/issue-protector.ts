@@ -9,6 +9,7 @@ import { type Actor, visible } from "../lib/policy";
 import type { Worker } from "../models/worker";
 import { fitPolicy, protectorPolicy } from "../policies";
 import { barsAtDesk } from "../queries/barred";
+import { pairPassed } from "../queries/own-attenuation";
 import { assignIssued } from "./assign-issued";
 import { barCode } from "./bar-code";
 import { followFits } from "./follow-fits";
@@ -16,7 +17,7 @@ import { moveStock, stockOf } from "./move-stock";
 
 /**
  * Hands a device out: assignment, stock and acknowledgement stand or fall together. The worker's row is locked. Returns
- * the issue's id.
+ * the issue's id, and what it takes the place of.
  *
  * @throws AppError not-found or invalid.
  */
@@ -25,12 +26,12 @@ export async function issueProtector(
   worker: Worker,
   site: { timeZone: string },
   input: IssueInput,
-): Promise<string> {
+): Promise<{ id: string; replacedName: string | null }> {
   const { modelId, size, fitTestId, issuedOn, isAcknowledged, reason, offeredModelIds } = input;
   const { organizationId, userId } = actor;
   const stock = await stockOf(worker.siteId, modelId, size);
   await check(actor, worker, todayAt(site.timeZone), input, stock);
-  const assignmentId = await assignIssued(actor, worker, {
+  const { assignmentId, replacedName } = await assignIssued(actor, worker, {
     taskId: input.taskId,
     areaId: input.areaId,
     innerModelId: modelId,
@@ -81,7 +82,7 @@ export async function issueProtector(
     values: { workerId: worker.id, assignmentId, ...facts, isReasonGiven: reason !== null },
   });
   await followFits(organizationId, { workerId: worker.id, modelId });
-  return id;
+  return { id, replacedName };
 }
 
 async function check(
@@ -108,40 +109,43 @@ async function check(
     issues.push(issue(["size"], "size-unknown"));
   if (!offeredModelIds.includes(modelId))
     issues.push(issue(["offeredModelIds"], "issued-not-offered"));
+  const fit = fitTestId === null ? null : await fitOf(actor, fitTestId);
   const asked = reasonAskedFor(
     offered.map(({ kind }) => kind),
     stock,
+    fit,
   );
   if (reason === null && asked !== null) issues.push(issue(["reason"], asked));
   const bar = (await barsAtDesk(actor, worker, modelId)).issue;
   if (bar) issues.push(issue(["modelId"], barCode(bar)));
-  if (fitTestId !== null) issues.push(...(await fitTestIssues(actor, worker, input, fitTestId)));
+  if (fit && !isOfThis(fit, worker, input)) issues.push(issue(["fitTestId"], "fit-of-another"));
   if (issues.length > 0) throw unprocessable(issues);
 }
 
-/** A fit test stands behind the issue only if it is this worker's, of this model and this size. */
-async function fitTestIssues(
-  actor: Actor,
-  worker: Worker,
-  { modelId, size }: IssueInput,
-  fitTestId: string,
-): Promise<ProblemIssue[]> {
-  const test = await row<{
-    workerId: string;
-    modelId: string;
-    size: string | null;
-    isVoid: boolean;
-  }>(
-    `SELECT f.worker_id AS "workerId", f.model_id AS "modelId", v.size, f.is_void AS "isVoid"
+interface FitBehind {
+  workerId: string;
+  modelId: string;
+  size: string | null;
+  isVoid: boolean;
+  hasPassed: boolean | null;
+  needDb: number | null;
+}
+
+async function fitOf(actor: Actor, fitTestId: string): Promise<FitBehind> {
+  const test = await row<FitBehind>(
+    `SELECT f.worker_id AS "workerId", f.model_id AS "modelId", v.size, f.is_void AS "isVoid", ${pairPassed("v")} AS "hasPassed",
+       v.need_db AS "needDb"
      FROM fit_tests f JOIN fit_test_revisions v ON v.id = f.current_revision_id
      WHERE f.id = :fitTestId AND ${visible(fitPolicy, actor, "f")}`,
     { fitTestId },
   );
   if (!test) throw notFound();
-  const isOfThis =
-    test.workerId === worker.id &&
-    test.modelId === modelId &&
-    !test.isVoid &&
-    (test.size === null || size === null || test.size === size);
-  return isOfThis ? [] : [issue(["fitTestId"], "fit-of-another")];
+  return test;
 }
+
+/** A fit test stands behind the issue only if it is this worker's, of this model and this size. */
+const isOfThis = (fit: FitBehind, worker: Worker, { modelId, size }: IssueInput): boolean =>
+  fit.workerId === worker.id &&
+  fit.modelId === modelId &&
+  !fit.isVoid &&
+  (fit.size === null || size === null || fit.size === size);

@@ -1,5 +1,5 @@
 import { randomUUID } from "node:crypto";
-import { fitRating } from "../../shared/acoustics/protection/fit-rating";
+import { fitRating, impossibleTrials } from "../../shared/acoustics/protection/fit-rating";
 import type { FitTestChange, FitTestInput } from "../../shared/schemas/fit";
 import type { ProblemIssue } from "../../shared/schemas/problem";
 import { recordAudit } from "../lib/audit";
@@ -220,8 +220,11 @@ function ratingOf({ facts, confidencePct, needDb }: Statement, activePassed: Act
   if (refusal) {
     if (refusal.code === "no-trial")
       throw unprocessable([issue(["facts", "leftDb"], refusal.code)]);
-    const { code, ear, ...params } = refusal;
-    throw unprocessable([issue(["facts", ear === "left" ? "leftDb" : "rightDb"], code, params)]);
+    throw unprocessable(
+      impossibleTrials(facts).map(({ code, ...params }) =>
+        issue(["facts", params.ear === "left" ? "leftDb" : "rightDb"], code, params),
+      ),
+    );
   }
   return {
     leftDb: rating.left?.parDb ?? null,

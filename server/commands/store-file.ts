@@ -6,10 +6,24 @@ import type { Actor } from "../lib/policy";
 /** What an organization may keep, bytes as they came: a year of 250,000 time histories in text and as much again. */
 const QUOTA_BYTES = 500 * 1024 ** 3;
 
+const KINDS_BY_ENDING: Readonly<Record<string, string>> = {
+  pdf: "application/pdf",
+  png: "image/png",
+  jpg: "image/jpeg",
+  jpeg: "image/jpeg",
+  webp: "image/webp",
+};
+
+/** By its name it would be taken. */
+function isNamedAs(name: string, mediaTypes: readonly string[]): boolean {
+  const kind = KINDS_BY_ENDING[name.split(".").at(-1)?.toLowerCase() ?? ""];
+  return kind !== undefined && mediaTypes.includes(kind);
+}
+
 /**
  * Keeps a file under its content and returns its id; the same content again is the same file.
  *
- * @throws AppError 422 where it is of no kind in `mediaTypes`, 413 past the organization's quota.
+ * @throws AppError 422 where its content is of no kind in `mediaTypes`, 413 past the organization's quota.
  */
 export async function storeFile(
   actor: Pick<Actor, "organizationId" | "userId">,
@@ -19,7 +33,11 @@ export async function storeFile(
 ): Promise<{ id: string; isNew: boolean }> {
   const mediaType = await sniffMediaType(staged.path);
   if (!mediaTypes.includes(mediaType))
-    throw unprocessable([issue(["file"], "file-kind", { found: mediaType })]);
+    throw unprocessable([
+      isNamedAs(name, mediaTypes)
+        ? issue(["file"], "file-not-as-named", { name, found: mediaType })
+        : issue(["file"], "file-kind", { found: mediaType }),
+    ]);
   const used = await row<{ bytes: number }>(
     "SELECT coalesce(sum(size_bytes), 0)::float8 AS bytes FROM files",
   );

@@ -6,6 +6,7 @@ import {
   drawPolicy,
   findingPolicy,
   fitTestPolicy,
+  letterPolicy,
   noticePolicy,
   planPolicy,
   protectorPolicy,
@@ -14,6 +15,7 @@ import {
   siteOfEvent,
   workerPolicy,
 } from "../policies";
+import { LATER_LETTER, LETTER_STATE } from "../queries/letters";
 import { pairPassed } from "../queries/own-attenuation";
 import { YEAR_COLUMNS, type YearColumn } from "./year-columns";
 
@@ -369,6 +371,70 @@ export function yearTables(actor: Actor, asked: YearRecords): YearTable[] {
       ],
       rest: `FROM notices n JOIN users u ON u.id = n.recipient_id
         WHERE n.site_id = '${siteId}' AND n.created_at >= '${year}-01-01' AND n.created_at < '${year + 1}-01-01' AND ${visible(noticePolicy, actor, "n")} ORDER BY n.created_at, n.id`,
+    },
+    {
+      name: "letters",
+      title: "Letters with results of a day in the year, and that they were read",
+      key: ["letter_id"],
+      columns: [
+        id("letter_id", "l.id", "Letter"),
+        worker,
+        code(
+          "kind",
+          "CASE WHEN l.replaces_id IS NULL THEN 'results' ELSE 'correction' END",
+          "results, or a correction",
+        ),
+        id("correction_of", "l.replaces_id", "The letter that it corrects; empty: it is the first"),
+        code("language", "l.language", "Language that it is written in"),
+        code("rule_set", "l.rule_set", "Rule set whose duty to tell it answers"),
+        whole("rule_set_version", "l.rule_set_version", "Version of the rule set"),
+        code(
+          "result_ids",
+          "(SELECT string_agg(x.result_id::text, ' ' ORDER BY x.date) FROM result_letter_days x WHERE x.letter_id = l.id)",
+          "The results that it tells of, by day",
+        ),
+        time("written_at", utc("l.written_at"), "When it was written, UTC"),
+        date("due_on", "l.due_on", "Day by which the worker has to know"),
+        code(
+          "state",
+          LETTER_STATE,
+          "to-print, waiting, sent, failed, withdrawn, replaced or acknowledged",
+        ),
+        code(
+          "delivery",
+          "CASE WHEN l.notice_id IS NULL OR n.state = 'on-paper' THEN 'paper' ELSE 'mail' END",
+          "mail or paper",
+        ),
+        time(
+          "sent_at",
+          utc("n.sent_at"),
+          "When the mail server took it, UTC; empty: not sent by mail",
+        ),
+        time(
+          "to_paper_at",
+          utc(
+            `(SELECT max(e.at) FROM audit_events e WHERE e.organization_id = l.organization_id AND e.subject_kind = 'notice'
+              AND e.subject_id = l.notice_id AND e.action = 'give-on-paper-notice')`,
+          ),
+          "When paper took the place of a mail, UTC; empty: it did not, or it was on paper from the first",
+        ),
+        code(
+          "acknowledged_by",
+          "a.way",
+          "link: by the worker; paper: signed; empty: not acknowledged",
+        ),
+        time("acknowledged_at", utc("a.recorded_at"), "When that was recorded, UTC"),
+        date("signed_on", "a.signed_on", "Date beside the signature, on paper"),
+        text(
+          "recorded_by",
+          isNamed ? "u.name" : "a.recorded_by::text",
+          "Who recorded the paper. An id in a file without workers' names",
+        ),
+      ],
+      rest: `FROM result_letters l JOIN workers w ON w.id = l.worker_id LEFT JOIN notices n ON n.id = l.notice_id
+        LEFT JOIN notice_acknowledgements a ON a.letter_id = l.id LEFT JOIN users u ON u.id = a.recorded_by ${LATER_LETTER}
+        WHERE l.site_id = '${siteId}' AND ${visible(letterPolicy, actor, "l")}
+          AND EXISTS (SELECT 1 FROM result_letter_days x WHERE x.letter_id = l.id AND ${inYear("x.date")}) ORDER BY l.written_at, l.id`,
     },
     {
       name: "timetables",

@@ -48,7 +48,13 @@ export const ROSTER_COLUMNS: readonly ImportColumn[] = [
     meaning: "The agency’s or contractor’s name",
     isRequired: false,
   },
-  { name: "language", kind: "choice", example: "en", meaning: "en or de", isRequired: false },
+  {
+    name: "language",
+    kind: "choice",
+    example: "en",
+    meaning: Language.options.join(", "),
+    isRequired: false,
+  },
   {
     name: "job",
     kind: "text",

@@ -2,6 +2,7 @@ import type { z } from "zod";
 import type { DutyFilter, DutyItem, DutyKind, DutyPage } from "../../shared/schemas/duty";
 import { decodeCursor, pageFrom } from "../lib/cursor";
 import { rows } from "../lib/db";
+import { canBeLate } from "../lib/overdue";
 import { type Actor, visible } from "../lib/policy";
 import {
   findingPolicy,
@@ -29,7 +30,7 @@ const sources: Readonly<Record<DutyKind, (actor: Actor) => string>> = {
   finding: (actor) => `
     SELECT f.id::text AS id, f.site_id, f.due_on, f.worker_id, coalesce(j.name, i.name) AS what, f.id AS target_id, f.kind AS finding_kind, f.criterion
     FROM findings f LEFT JOIN jobs j ON j.id = f.job_id LEFT JOIN instruments i ON i.id = f.instrument_id
-    WHERE f.state IN ('new', 'in-hand', 'came-back') AND f.due_on IS NOT NULL AND f.kind NOT IN ('instrument', 'fit-due')
+    WHERE ${canBeLate("f")} AND f.due_on IS NOT NULL AND f.kind NOT IN ('instrument', 'fit-due')
       AND ${visible(findingPolicy, actor, "f")}`,
   measure: (actor) => `
     SELECT m.id::text, f.site_id, m.planned_on, f.worker_id, m.what, f.id, f.kind, f.criterion

@@ -10,6 +10,7 @@ import { addDays, localDate } from "../../shared/time/zone";
 import { decodeCursor, pageFrom } from "../lib/cursor";
 import { rows } from "../lib/db";
 import { only } from "../lib/only";
+import { canBeToldOfOverdue } from "../lib/overdue";
 import { type Actor, abilities, visible } from "../lib/policy";
 import type { Finding } from "../models/finding";
 import { evidencePolicy, findingPolicy } from "../policies";
@@ -135,6 +136,10 @@ export async function findingView(
      FROM notice_items i JOIN notices n ON n.id = i.notice_id JOIN users u ON u.id = n.recipient_id WHERE i.finding_id = :id ORDER BY at`,
     { id: finding.id },
   );
+  const above = await rows(
+    `SELECT u.id FROM sites s JOIN users u ON u.id = s.escalation_user_id WHERE s.id = :siteId AND ${canBeToldOfOverdue("u")}`,
+    { siteId: finding.siteId },
+  );
   return {
     ...only(await presentAll(actor, found)),
     closingReason: finding.closingReason,
@@ -147,6 +152,7 @@ export async function findingView(
     })),
     told: told.map(({ at, ...one }) => ({ ...one, at: at?.toISOString() ?? null })),
     untold: told.length > 0 ? null : whyUntold(finding),
+    goesUp: above.length > 0,
   };
 }
 

@@ -37,7 +37,8 @@ const TODAY = "(now() AT TIME ZONE s.time_zone)::date";
 const SELECT_FIT_TESTS = `SELECT f.id, f.revision, f.site_id AS "siteId", f.worker_id AS "workerId", w.name AS "workerName", w.employee_number AS "employeeNumber",
     f.model_id AS "modelId", m.name AS "modelName", f.tested_on::text AS "testedOn", f.created_at::text AS "createdAt", v.method, v.size, v.facts, v.confidence_pct AS "confidencePct",
     v.need_db AS "needDb", v.note, v.left_db AS "leftDb", v.right_db AS "rightDb", v.par_db AS "parDb", ${pairPassed("v")} AS "hasPassed",
-    v.active_passed AS "activePassed", f.is_void AS "isVoid", u.name AS "authorName",
+    v.active_passed AS "activePassed", f.is_void AS "isVoid",
+    CASE WHEN f.is_void THEN v.reason END AS "struckReason", u.name AS "authorName",
     CASE WHEN EXISTS (SELECT 1 FROM protector_issues i WHERE i.fit_test_id = f.id) OR ${isOut} THEN 'issued' ELSE 'tried' END AS outcome,
     ${TODAY}::text AS today, m.kind, (SELECT (r.data->>'usRatingDb')::float FROM protector_model_revisions r
       WHERE r.model_id = f.model_id AND r.effective_from <= ${TODAY} ORDER BY r.effective_from DESC, r.number DESC LIMIT 1) AS "usRatingDb",

@@ -14,7 +14,7 @@ import { rows } from "../lib/db";
 import { only } from "../lib/only";
 import { type Actor, abilities, visible } from "../lib/policy";
 import type { Worker } from "../models/worker";
-import { fitPolicy, issuePolicy } from "../policies";
+import { assignmentPolicy, fitPolicy, issuePolicy } from "../policies";
 import { listFitTests } from "./fit-tests";
 import { activeChecksOf, fitsOf, offersAt, pairsOf, requiredGear } from "./register-offers";
 import { FIT_POLICY } from "./sites";
@@ -48,6 +48,7 @@ export async function fittingDesk(actor: Actor, worker: Worker): Promise<Fitting
     pairs,
     tests: tests.rows,
     issued: await issuedTo(actor, worker.id),
+    assigned: await assignedTo(actor, worker.id, today),
     can: { test: can.test, issue: can.issue },
   };
 }
@@ -129,6 +130,21 @@ export async function deskChoice(
 /** A fit of which no need was known when it was tested is held against the one at the desk's head, dB. */
 const judgedByNeed = (fit: OwnFit, needDb: number | null): OwnFit =>
   fit.needDb !== null ? fit : { ...fit, needDb, hasPassed: passesNeed(fit.parDb, needDb) };
+
+function assignedTo(
+  actor: Actor,
+  workerId: string,
+  today: string,
+): Promise<FittingDesk["assigned"]> {
+  return rows<FittingDesk["assigned"][number]>(
+    `SELECT a.task_id AS "taskId", a.area_id AS "areaId", a.inner_model_id AS "innerModelId", a.outer_model_id AS "outerModelId", a.size,
+       concat_ws(' + ', i.name, o.name) AS name, lower(a.valid)::text AS "fromDate", (upper(a.valid) - 1)::text AS "toDate"
+     FROM assignments a JOIN protector_models i ON i.id = a.inner_model_id LEFT JOIN protector_models o ON o.id = a.outer_model_id
+     WHERE a.worker_id = :workerId AND ${visible(assignmentPolicy, actor, "a")} AND a.valid && daterange(CAST(:today AS date), NULL)
+     ORDER BY lower(a.valid), a.id`,
+    { workerId, today },
+  );
+}
 
 function issuedTo(actor: Actor, workerId: string): Promise<FittingDesk["issued"]> {
   return rows<FittingDesk["issued"][number]>(

@@ -2,6 +2,7 @@ import type { z } from "zod";
 import { mainLimit, RULE_SETS } from "../../shared/rule-sets";
 import type { GapKind, GapNames, GapsView } from "../../shared/schemas/waiting";
 import { rows } from "../lib/db";
+import { only } from "../lib/only";
 import { type Actor, visible } from "../lib/policy";
 import { dayPolicy, findingPolicy, letterPolicy } from "../policies";
 import { TRAINING_DUTIES } from "./training";
@@ -42,8 +43,8 @@ const notices = (condition: string) => `
  * - not-measured: workers over 80 dB without protection on a day known only from a task's level or an estimate, of whom
  *   no run of that year is recorded; with their job and the last such day.
  * - no-protector: workers with an open finding that a protector is required and none assigned, on a day of that year.
- * - not-fitted: workers over 80 dB with a protector, at a site that asks for fit tests, and no test of theirs within the
- *   site's interval before the last such day; with their job and that day.
+ * - not-fitted: workers over 80 dB with a protector, and no test of theirs within the site's interval before the last such
+ *   day; where the site states no interval, never a test with what they wore on it; with their job and that day.
  * - letter-late: letters of results about days of that year that reached their worker after the rule's days, or have not
  *   yet and should have; with the day on which each was due.
  * - not-trained: workers over what their rules' duty to train hangs from, and no training within its interval before the
@@ -67,13 +68,13 @@ const gapQueries: Record<Kind, (actor: Actor) => string> = {
     WHERE f.kind = 'no-protector' AND f.state <> 'closed' AND ${visible(findingPolicy, actor, "f")}
     GROUP BY f.worker_id`,
   "not-fitted": () => `
-    SELECT d.worker_id AS id, max(j.name) AS note, max(d.date) AS date
-    FROM year_days d JOIN day_results r ON r.id = d.result_id AND r.has_protector = 'yes' JOIN sites s ON s.id = :siteId
-    JOIN workers w ON w.id = d.worker_id LEFT JOIN jobs j ON j.id = w.job_id
-    WHERE d.outside_db > ${IN_NOISE_DB} AND (s.fit_every_months IS NOT NULL OR s.fit_after_fail_days IS NOT NULL)
-    GROUP BY d.worker_id, s.fit_every_months HAVING NOT EXISTS (
-      SELECT 1 FROM fit_tests f WHERE f.worker_id = d.worker_id AND NOT f.is_void AND f.tested_on <= make_date(:year, 12, 31)
-        AND f.tested_on > coalesce(max(d.date) - make_interval(months => s.fit_every_months), '-infinity'))`,
+    SELECT d.worker_id AS id, d.job AS note, d.date
+    FROM (SELECT d.worker_id, max(j.name) AS job, max(d.date) AS date FROM year_days d JOIN day_results r ON r.id = d.result_id AND r.has_protector = 'yes'
+      JOIN workers w ON w.id = d.worker_id LEFT JOIN jobs j ON j.id = w.job_id WHERE d.outside_db > ${IN_NOISE_DB} GROUP BY d.worker_id) d
+    JOIN sites s ON s.id = :siteId
+    WHERE NOT EXISTS (SELECT 1 FROM fit_tests f WHERE f.worker_id = d.worker_id AND NOT f.is_void AND f.tested_on <= make_date(:year, 12, 31)
+      AND CASE WHEN s.fit_every_months IS NOT NULL THEN f.tested_on > d.date - make_interval(months => s.fit_every_months)
+        ELSE EXISTS (SELECT 1 FROM assignments a WHERE a.worker_id = d.worker_id AND a.valid @> d.date AND f.model_id IN (a.inner_model_id, a.outer_model_id)) END)`,
   "letter-late": (actor) => `
     SELECT l.worker_id AS id, NULL AS note, l.due_on AS date
     FROM result_letters l JOIN sites s ON s.id = l.site_id LEFT JOIN notices n ON n.id = l.notice_id LEFT JOIN notice_acknowledgements a ON a.letter_id = l.id
@@ -131,12 +132,15 @@ export async function yearGaps(
      FROM year_days d WHERE d.result_id IS NOT NULL GROUP BY 1 ORDER BY 1`;
   const ruleSets = `SELECT DISTINCT d.governing_rule_set AS key, d.governing_version AS version
      FROM year_days d WHERE d.result_id IS NOT NULL ORDER BY 1, 2`;
-  const [found] = await rows<Omit<z.input<typeof GapsView>, "years">>(
-    `WITH ${yearDays(actor)}
+  const found = only(
+    await rows<Omit<z.input<typeof GapsView>, "years"> & { hasNoInterval: boolean }>(
+      `WITH ${yearDays(actor)}
      SELECT (SELECT json_agg(q) FROM (${counts.join(" UNION ALL ")}) q) AS counts,
        (SELECT coalesce(json_agg(q), '[]') FROM (${months}) q) AS months,
-       (SELECT coalesce(json_agg(q), '[]') FROM (${ruleSets}) q) AS "ruleSets"`,
-    values,
+       (SELECT coalesce(json_agg(q), '[]') FROM (${ruleSets}) q) AS "ruleSets",
+       (SELECT s.fit_every_months IS NULL FROM sites s WHERE s.id = :siteId) AS "hasNoInterval"`,
+      values,
+    ),
   );
   const years = await rows<{ year: number }>(
     `WITH span AS (SELECT min(d.date) AS first, max(d.date) AS last FROM days d WHERE d.site_id = :siteId)
@@ -144,7 +148,14 @@ export async function yearGaps(
      WHERE EXISTS (SELECT 1 FROM days d WHERE d.site_id = :siteId AND d.date BETWEEN make_date(y, 1, 1) AND make_date(y, 12, 31) AND ${visible(dayPolicy, actor, "d")})`,
     values,
   );
-  return { ...found!, years: years.map(({ year: one }) => one) };
+  const { hasNoInterval, ...rest } = found;
+  return {
+    ...rest,
+    counts: rest.counts.map((gap) =>
+      gap.kind === "not-fitted" && hasNoInterval ? { ...gap, hasNoInterval } : gap,
+    ),
+    years: years.map(({ year: one }) => one),
+  };
 }
 
 /** The names behind one count. */

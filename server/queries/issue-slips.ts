@@ -32,6 +32,7 @@ interface DeviceRow {
   outerName: string | null;
   size: string | null;
   kind: string;
+  outerKind: string | null;
   useName: string | null;
   fit: { testedOn: string; hasPassed: boolean | null; needDb: number | null } | null;
   issuedOn: string | null;
@@ -157,12 +158,23 @@ async function slipsAt(siteId: string, people: readonly PersonRow[]): Promise<Is
           outsideDb: task?.outsideDb ?? null,
           wornDb: task?.wornDb ?? null,
           word: task?.word ?? null,
-          batteryMin: (known && context.models.get(known.innerModelId)?.active?.batteryMin) ?? null,
+          batteryMin: known
+            ? shortest(
+                [known.innerModelId, known.outerModelId].map(
+                  (id) => (id && context.models.get(id)?.active?.batteryMin) || null,
+                ),
+              )
+            : null,
         };
       }),
     };
   });
 }
+
+const shortest = (minutes: readonly (number | null)[]): number | null => {
+  const known = minutes.filter((one) => one !== null);
+  return known.length === 0 ? null : Math.min(...known);
+};
 
 /** Too little first, then too much: the task that decides a word. */
 const RANK = ({ word }: { word: string | null }): number =>
@@ -171,18 +183,23 @@ const RANK = ({ word }: { word: string | null }): number =>
 /** What each worker has, where it is worn, whether it fits, and when its parts are due. */
 const devicesOn = (ids: string, date: string): Promise<DeviceRow[]> =>
   rows<DeviceRow>(
-    `SELECT a.id AS "assignmentId", a.worker_id AS "workerId", i.name AS "innerName", o.name AS "outerName", i.kind, a.size, coalesce(t.name, r.name) AS "useName",
+    `WITH due AS (
+       SELECT a.id AS assignment_id, x.issued_on + (d.data->>'cushionsEveryDays')::int AS cushions_on, x.issued_on + (d.data->>'tipsEveryDays')::int AS tips_on
+       FROM assignments a CROSS JOIN LATERAL unnest(ARRAY[a.inner_model_id, a.outer_model_id]) AS worn (model_id)
+       CROSS JOIN LATERAL (SELECT p.data FROM protector_model_revisions p WHERE p.model_id = worn.model_id AND p.effective_from <= CAST(:date AS date)
+         ORDER BY p.effective_from DESC, p.number DESC LIMIT 1) d
+       CROSS JOIN LATERAL (SELECT coalesce((SELECT max(m.moved_on) FROM stock_moves m WHERE m.issue_id = e.id AND m.kind = 'changed'), e.issued_on) AS issued_on
+         FROM protector_issues e WHERE e.worker_id = a.worker_id AND e.model_id = worn.model_id AND e.ended_on IS NULL ORDER BY e.issued_on DESC LIMIT 1) x
+       WHERE a.worker_id = ANY (CAST(:ids AS uuid[])) AND a.valid @> CAST(:date AS date))
+     SELECT a.id AS "assignmentId", a.worker_id AS "workerId", i.name AS "innerName", o.name AS "outerName", i.kind, o.kind AS "outerKind", a.size, coalesce(t.name, r.name) AS "useName",
        (SELECT json_build_object('testedOn', f.tested_on::text, 'hasPassed', v.has_passed, 'needDb', v.need_db) FROM fit_test_revisions v JOIN fit_tests f ON f.id = v.fit_test_id
         WHERE a.outer_model_id IS NULL AND v.id = ${fitInForce("a.worker_id", "a.inner_model_id", "a.size", "CAST(:date AS date)")}) AS fit,
        (SELECT CASE WHEN count(DISTINCT e.model_id) = 1 + (a.outer_model_id IS NOT NULL)::int THEN max(e.issued_on)::text END FROM protector_issues e
         WHERE e.worker_id = a.worker_id AND e.model_id IN (a.inner_model_id, a.outer_model_id) AND e.ended_on IS NULL) AS "issuedOn",
-       (x.issued_on + (d.data->>'cushionsEveryDays')::int)::text AS "cushionsDueOn", (x.issued_on + (d.data->>'tipsEveryDays')::int)::text AS "tipsDueOn"
+       (SELECT min(d.cushions_on)::text FROM due d WHERE d.assignment_id = a.id) AS "cushionsDueOn",
+       (SELECT min(d.tips_on)::text FROM due d WHERE d.assignment_id = a.id) AS "tipsDueOn"
      FROM assignments a JOIN protector_models i ON i.id = a.inner_model_id LEFT JOIN protector_models o ON o.id = a.outer_model_id
      LEFT JOIN tasks t ON t.id = a.task_id LEFT JOIN areas r ON r.id = a.area_id
-     LEFT JOIN LATERAL (SELECT p.data FROM protector_model_revisions p WHERE p.model_id = a.inner_model_id AND p.effective_from <= CAST(:date AS date)
-       ORDER BY p.effective_from DESC, p.number DESC LIMIT 1) d ON TRUE
-     LEFT JOIN LATERAL (SELECT coalesce((SELECT max(m.moved_on) FROM stock_moves m WHERE m.issue_id = e.id AND m.kind = 'changed'), e.issued_on) AS issued_on
-       FROM protector_issues e WHERE e.worker_id = a.worker_id AND e.model_id = a.inner_model_id AND e.ended_on IS NULL ORDER BY e.issued_on DESC LIMIT 1) x ON TRUE
      WHERE a.worker_id = ANY (CAST(:ids AS uuid[])) AND a.valid @> CAST(:date AS date)
      ORDER BY a.worker_id, a.task_id NULLS LAST, a.area_id NULLS LAST, i.name`,
     { ids, date },

@@ -24,6 +24,9 @@ type Found = Omit<
   siteName: string;
 };
 
+/** The letter that took the place of `l`. */
+export const LATER_LETTER = `LEFT JOIN LATERAL (SELECT r.id FROM result_letters r WHERE r.replaces_id = l.id ORDER BY r.written_at DESC LIMIT 1) later ON TRUE`;
+
 /** The notice went; whether it arrived nobody knows where it is possibly sent. */
 export const LETTER_STATE = `CASE WHEN later.id IS NOT NULL AND a.id IS NULL THEN 'replaced' WHEN a.id IS NOT NULL THEN 'acknowledged'
   WHEN l.notice_id IS NULL THEN 'to-print' WHEN n.state = 'withdrawn' THEN 'withdrawn' WHEN n.state IN ('failed', 'bounced') THEN 'failed'
@@ -37,7 +40,7 @@ const LETTERS = `SELECT l.id, l.site_id AS "siteId", l.worker_id AS "workerId", 
     o.name AS "organizationName", s.name AS "siteName", l.language, l.subject, l.body_text AS text, l.replaces_id AS "replacesId", later.id AS "replacedById", l.rule_set AS "ruleSetKey", l.rule_set_version AS "ruleSetVersion"
   FROM result_letters l JOIN workers w ON w.id = l.worker_id JOIN sites s ON s.id = l.site_id JOIN organizations o ON o.id = l.organization_id LEFT JOIN notices n ON n.id = l.notice_id
   LEFT JOIN notice_acknowledgements a ON a.letter_id = l.id LEFT JOIN users u ON u.id = a.recorded_by
-  LEFT JOIN LATERAL (SELECT r.id FROM result_letters r WHERE r.replaces_id = l.id ORDER BY r.written_at DESC LIMIT 1) later ON TRUE`;
+  ${LATER_LETTER}`;
 
 /** What is neither acknowledged nor overtaken. */
 const OPEN = `${LETTER_STATE} IN ('to-print', 'waiting', 'sent', 'failed')`;

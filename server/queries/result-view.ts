@@ -11,7 +11,7 @@ import {
   presentDayFigures,
 } from "../presenters/day-figures";
 import { type DayRefs, hydrateDays, ruleSetsOf } from "./day-inputs";
-import { wearingSeen } from "./own-attenuation";
+import { wearingSeen, wearingSeenFrom } from "./own-attenuation";
 
 interface Found extends DayFiguresRow {
   workerId: string;
@@ -139,16 +139,18 @@ async function view(found: Found | null): Promise<z.input<typeof ResultView>> {
 /** Less of a difference is within what a few looks can tell, percentage points. Common practice, no source. */
 const DIFFERS_FROM_PCT = 10;
 
-/** Tasks whose stated wearing time is not what the rounds of that time saw. */
+/** Tasks whose stated wearing time is not what the rounds of that time saw, or the worker said. */
 function wearingThatDiffers(
   workerId: string,
   date: string,
   timedIds: readonly string[],
 ): Promise<ResultView["wearingSeen"]> {
   return rows<ResultView["wearingSeen"][number]>(
-    `SELECT x."taskId", x."taskName", x."statedPct", (x.seen->>0)::int AS "wornCount", (x.seen->>1)::int AS "seenCount"
+    `SELECT x."taskId", x."taskName", x."statedPct", (x.seen->>0)::int AS "wornCount", (x.seen->>1)::int AS "seenCount",
+       CASE WHEN NOT x.sources @> '[["own-report"]]' THEN 'rounds' WHEN x.sources @> '[["round"]]' THEN 'both' ELSE 'own-reports' END AS "from"
      FROM (SELECT DISTINCT t.task_id AS "taskId", k.name AS "taskName", t.worn_pct AS "statedPct",
-         ${wearingSeen("CAST(:workerId AS uuid)", "t.task_id", "CAST(:date AS date)")}::jsonb AS seen
+         ${wearingSeen("CAST(:workerId AS uuid)", "t.task_id", "CAST(:date AS date)")}::jsonb AS seen,
+         ${wearingSeenFrom("CAST(:workerId AS uuid)", "t.task_id", "CAST(:date AS date)")}::jsonb AS sources
        FROM shift_tasks t JOIN tasks k ON k.id = t.task_id
        WHERE t.id = ANY (CAST(:timedIds AS uuid[])) AND t.worn_pct IS NOT NULL) x
      WHERE x.seen IS NOT NULL AND abs(100.0 * (x.seen->>0)::int / (x.seen->>1)::int - x."statedPct") > ${DIFFERS_FROM_PCT}

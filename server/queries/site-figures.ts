@@ -221,13 +221,14 @@ export async function siteFigures(
     criteria,
     total: present(total ?? []),
     groups,
-    gaps: GAPS_OF_PEOPLE.map((kind) => ({
-      kind,
-      count:
-        protectCounts({ parts: [], nested: [[0, 1]] }, [
-          [[inNoise, gaps.find((gap) => gap.kind === kind)?.count ?? 0]],
-        ]).tables[0]?.[0]?.[1] ?? 0,
-    })),
+    gaps: GAPS_OF_PEOPLE.flatMap((kind) => gaps.find((gap) => gap.kind === kind) ?? []).map(
+      (gap) => ({
+        ...gap,
+        count:
+          protectCounts({ parts: [], nested: [[0, 1]] }, [[[inNoise, gap.count]]])
+            .tables[0]?.[0]?.[1] ?? 0,
+      }),
+    ),
     findings: findings
       .sort((a, b) => FINDING_KINDS.indexOf(a.kind) - FINDING_KINDS.indexOf(b.kind))
       .map(({ kind, isPersonal, total: all, first, second, third }) => ({

@@ -34,18 +34,24 @@ const NOMINAL = `SELECT t.id AS "taskId", t.name, n.duration_min AS "durationMin
 
 /**
  * How long each task of a worker's nominal day may last today, the rest of the day as usual. Nothing is said of anybody
- * whose day has a task of which the noise is not certain, nor of whoever has a target of their own: that is the officer's
- * to tell.
+ * whose day has a task of which the noise is not certain, nor while it is open where a bang came from, nor of whoever has a
+ * target of their own: that is the officer's to tell.
  */
 export async function taskTimes(worker: Worker): Promise<TaskTimes> {
   const none = { rows: [] };
-  const place = await row<{ timeZone: string; usualLengthMin: number | null }>(
+  const place = await row<{
+    timeZone: string;
+    usualLengthMin: number | null;
+    hasOpenPeak: boolean;
+  }>(
     `SELECT s.time_zone AS "timeZone", (SELECT c.usual_length_min FROM crew_memberships m JOIN crews c ON c.id = m.crew_id
-       WHERE m.worker_id = :id AND m.valid @> (now() AT TIME ZONE s.time_zone)::date ORDER BY m.is_loan DESC, lower(m.valid) DESC LIMIT 1) AS "usualLengthMin"
+       WHERE m.worker_id = :id AND m.valid @> (now() AT TIME ZONE s.time_zone)::date ORDER BY m.is_loan DESC, lower(m.valid) DESC LIMIT 1) AS "usualLengthMin",
+       EXISTS (SELECT 1 FROM findings f WHERE f.worker_id = :id AND f.kind = 'peak-or-ceiling' AND f.state NOT IN ('done', 'closed')) AS "hasOpenPeak"
      FROM sites s WHERE s.id = :siteId`,
     { id: worker.id, siteId: worker.siteId },
   );
   if (!place || worker.jobId === null || worker.personalTargetDb !== null) return none;
+  if (place.hasOpenPeak) return none;
   const date = todayAt(place.timeZone);
   if (worker.leftOn !== null && worker.leftOn < date) return none;
   const nominal = await rows<NominalTask>(NOMINAL, { jobId: worker.jobId, date });

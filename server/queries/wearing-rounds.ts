@@ -81,8 +81,12 @@ export async function wearingTally(crew: Crew, date: string): Promise<WearingTal
            WHERE x.worker_id = w.id AND x.valid @> CAST(:date AS date) AND (x.task_id = t.id OR x.area_id = t.area_id OR (x.task_id IS NULL AND x.area_id IS NULL)))
            AND coalesce((SELECT l.level_db FROM task_levels l WHERE l.task_id = t.id AND l.effective_from <= CAST(:date AS date)
              ORDER BY l.effective_from DESC, l.number DESC LIMIT 1), 0) >= g.wear_from_db)), '[]') AS "taskIds",
-       coalesce((SELECT json_agg(DISTINCT concat_ws(' + ', i.name, o.name)) FROM assignments x JOIN protector_models i ON i.id = x.inner_model_id
-         LEFT JOIN protector_models o ON o.id = x.outer_model_id WHERE x.worker_id = w.id AND x.valid @> CAST(:date AS date)), '[]') AS protectors
+       coalesce((SELECT json_agg(json_build_object('taskId', t.id, 'name', z.name) ORDER BY j.position) FROM job_tasks j JOIN tasks t ON t.id = j.task_id
+         CROSS JOIN LATERAL (SELECT concat_ws(' + ', i.name, o.name) AS name FROM assignments x JOIN protector_models i ON i.id = x.inner_model_id
+           LEFT JOIN protector_models o ON o.id = x.outer_model_id WHERE x.worker_id = w.id AND x.valid @> CAST(:date AS date)
+             AND (x.task_id = t.id OR x.area_id = t.area_id OR (x.task_id IS NULL AND x.area_id IS NULL))
+           ORDER BY x.task_id NULLS LAST, x.area_id NULLS LAST LIMIT 1) z
+         WHERE j.job_id = w.job_id AND t.site_id = :siteId), '[]') AS protectors
      FROM crew_memberships m JOIN workers w ON w.id = m.worker_id
      JOIN LATERAL (SELECT t.wear_from_db FROM site_settings t WHERE t.site_id = :siteId AND t.effective_from <= CAST(:date AS date)
        ORDER BY t.effective_from DESC, t.number DESC LIMIT 1) g ON TRUE

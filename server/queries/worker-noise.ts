@@ -1,4 +1,7 @@
-import { evaluateDay } from "../../shared/acoustics/day";
+import { sumDay } from "../../shared/acoustics/day-sum";
+import { lawOf, levelOfWeight } from "../../shared/acoustics/exchange-law";
+import { outsideCriterion } from "../../shared/acoustics/outside-criterion";
+import { isTooDeepForOwnFit, lcMinusLaDb } from "../../shared/acoustics/protection/attenuation";
 import { attenuationNeed } from "../../shared/acoustics/protection/attenuation-need";
 import type { DayInput, RuleSetVersion, TimedTask } from "../../shared/acoustics/types";
 import { withTasks } from "../../shared/acoustics/with-tasks";
@@ -31,6 +34,8 @@ interface Asking {
   day: DayInput;
   task: TimedTask | null;
   outsideDb: number;
+  /** Only a bound is known, from above. */
+  isUpperBound: boolean;
 }
 
 /**
@@ -66,25 +71,37 @@ export async function workerNoise(worker: Person, date: string): Promise<WorkerN
       day: days[0] ? judgedNow(days[0]) : null,
       task: null,
     };
-  const { day, task, outsideDb } = loudest;
+  const { day, task, outsideDb, isUpperBound } = loudest;
   const need = attenuationNeed(outsideDb, governing.protection, worker.personalTargetDb);
-  const taskName = task?.name ?? null;
+  const of = {
+    outsideDb,
+    isUpperBound,
+    taskId: task?.taskId ?? null,
+    taskName: task?.name ?? null,
+    isTooDeepForOwnFit: isTooDeepForOwnFit(
+      governing.protection,
+      task?.level ? lcMinusLaDb(task.level) : null,
+    ),
+  };
   return {
     governing,
     creditsActivePart,
     day,
     task,
     need: need
-      ? { ...need, outsideDb, taskName, reason: recent.length > 0 ? null : "nominal-day" }
-      : { ...unknown("not-stated"), outsideDb, taskName },
+      ? { ...need, ...of, reason: recent.length > 0 ? null : "nominal-day" }
+      : { ...unknown("not-stated"), ...of },
   };
 }
 
 const unknown = (reason: string): AttenuationNeed => ({
   needDb: null,
   outsideDb: null,
+  isUpperBound: false,
   targetDb: null,
+  taskId: null,
   taskName: null,
+  isTooDeepForOwnFit: false,
   mostDb: null,
   reason,
 });
@@ -93,12 +110,18 @@ const unknown = (reason: string): AttenuationNeed => ({
 function askingOf(day: DayInput, governing: RuleSetVersion): Asking[] {
   const { adequacy } = governing.protection;
   if (adequacy === "appendix-b") {
-    const { outsideDb } = evaluateDay(bare(day), governing, []);
-    return outsideDb === null ? [] : [{ day, task: null, outsideDb }];
+    const law = lawOf(outsideCriterion(governing));
+    const { least, most, missing } = sumDay(bare(day), law);
+    if (missing !== null || most <= 0 || !Number.isFinite(most)) return [];
+    // What is enough is proved by the most that it can have been.
+    const outsideDb = levelOfWeight(most / law.referenceMin, law);
+    return [{ day, task: null, outsideDb, isUpperBound: least < most }];
   }
   return day.shifts.flatMap(({ tasks }) =>
     tasks.flatMap((task) =>
-      task.level && task.durationMin > 0 ? [{ day, task, outsideDb: task.level.levelDb }] : [],
+      task.level && task.durationMin > 0
+        ? [{ day, task, outsideDb: task.level.levelDb, isUpperBound: false }]
+        : [],
     ),
   );
 }

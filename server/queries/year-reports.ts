@@ -9,6 +9,7 @@ import { decodeCursor, pageFrom } from "../lib/cursor";
 import { row, rows } from "../lib/db";
 import { notFound } from "../lib/errors";
 import { only } from "../lib/only";
+import { isOverdueFinding } from "../lib/overdue";
 import { type Actor, abilities, visible } from "../lib/policy";
 import { dayPolicy, findingPolicy, yearReportPolicy } from "../policies";
 import {
@@ -64,12 +65,12 @@ async function countsOf(actor: Actor, { siteId, year }: YearOfSite): Promise<Day
        SELECT x.from_db, count(*) FILTER (WHERE x.line = 'outside')::int AS outside, count(*) FILTER (WHERE x.line = 'ear')::int AS at_ear
        FROM (SELECT ${STEP_DB} * floor(d.outside_db / ${STEP_DB}) AS from_db, 'outside' AS line FROM done d WHERE d.outside_db IS NOT NULL
          UNION ALL SELECT ${STEP_DB} * floor(d.at_ear_db / ${STEP_DB}), 'ear' FROM done d WHERE d.at_ear_db IS NOT NULL) x GROUP BY 1)
-     SELECT (SELECT json_build_object('withDay', count(*), 'levelUnknown', count(*) FILTER (WHERE unknown), ${COUNTS_OF_PERSONS}, 'overAtEar', count(*) FILTER (WHERE in_noise AND over_at_ear)) FROM person) AS people,
+     SELECT (SELECT json_build_object('withDay', count(*), 'levelUnknown', count(*) FILTER (WHERE unknown), ${COUNTS_OF_PERSONS}, 'overAtEar', CASE WHEN (SELECT bool_or(${judgesAtEar}) FROM done d) THEN count(*) FILTER (WHERE in_noise AND over_at_ear) END) FROM person) AS people,
        (SELECT json_build_object('count', count(*), 'outside', ${verdicts("verdict_outside")},
          'atEar', CASE WHEN bool_or(${judgesAtEar}) THEN ${verdicts("verdict_at_ear", judgesAtEar)} END) FROM done d) AS days,
        (SELECT coalesce(json_agg(json_build_object('fromDb', from_db, 'outside', outside, 'atEar', at_ear) ORDER BY from_db), '[]') FROM steps) AS histogram,
        (SELECT json_build_object('opened', count(*) FILTER (WHERE f.first_date >= make_date(:year, 1, 1)), 'closed', count(*) FILTER (WHERE f.state = 'closed'),
-         'open', count(*) FILTER (WHERE f.state <> 'closed'), 'overdue', count(*) FILTER (WHERE f.state <> 'closed' AND f.due_on < (now() AT TIME ZONE s.time_zone)::date))
+         'open', count(*) FILTER (WHERE f.state <> 'closed'), 'overdue', count(*) FILTER (WHERE ${isOverdueFinding("f", "(now() AT TIME ZONE s.time_zone)::date")}))
         FROM findings f JOIN sites s ON s.id = f.site_id WHERE f.site_id = :siteId AND f.first_date <= make_date(:year, 12, 31) AND f.last_date >= make_date(:year, 1, 1)
           AND ${visible(findingPolicy, actor, "f")}) AS findings`,
     { siteId, year },

@@ -30,3 +30,23 @@ export function instructionsFor(i18n: I18n, kind: ProtectorKind): string[] {
       return [always, i18n.t("Cups over the ears with no hair, cap or spectacle arm between")];
   }
 }
+
+interface Worn {
+  readonly kind: ProtectorKind;
+  readonly name: string;
+}
+
+/** Of two worn together: each step once, what goes on first before what goes over it. */
+export function instructionsForBoth(i18n: I18n, inner: Worn, outer: Worn): string[] {
+  const [always = "", ...steps] = instructionsFor(i18n, inner.kind);
+  return [
+    ...new Set([
+      always,
+      i18n.t("Both worn at once in the noise: neither alone is enough"),
+      ...steps.map((step) => i18n.t("First {protector}: {step}", { protector: inner.name, step })),
+      ...instructionsFor(i18n, outer.kind)
+        .slice(1)
+        .map((step) => i18n.t("Then {protector} over it: {step}", { protector: outer.name, step })),
+    ]),
+  ];
+}

@@ -16,7 +16,7 @@ import type { Actor } from "../lib/policy";
 import { issueSlips } from "../queries/issue-slips";
 import type { Block, Cell, Report, Sheet } from "./blocks";
 import { frameOf, originOf, type ReportOrigin } from "./frame";
-import { instructionsFor } from "./instructions";
+import { instructionsFor, instructionsForBoth } from "./instructions";
 import { stripPicture } from "./strip-picture";
 
 type Device = IssueSlip["protectors"][number];
@@ -189,8 +189,12 @@ const whichAndWhere = (i18n: I18n, locale: Locale, device: Device): Cell => ({
   ],
 });
 
-function fitWords(i18n: I18n, locale: Locale, { fit, kind }: Device): string {
-  if (fit === null) return protectorKindWord(i18n, kind as ProtectorKind);
+function fitWords(i18n: I18n, locale: Locale, { fit, kind, outerKind }: Device): string {
+  if (fit === null)
+    return [kind, outerKind]
+      .filter((one) => one !== null)
+      .map((one) => protectorKindWord(i18n, one as ProtectorKind))
+      .join(" + ");
   const date = formatShortDate(fit.testedOn, locale);
   if (fit.needDb !== null && !hasToPass(fit.needDb))
     return i18n.t("Fit measured {date}: nothing to pass", { date });
@@ -223,9 +227,15 @@ function levels(
 
 /** What is shown to whoever gets the device, and what is due on it. */
 function shown(i18n: I18n, locale: Locale, device: Device): string[] {
-  const { kind, batteryMin, cushionsDueOn, tipsDueOn } = device;
+  const { kind, outerKind, batteryMin, cushionsDueOn, tipsDueOn } = device;
   return [
-    ...instructionsFor(i18n, kind as ProtectorKind),
+    ...(outerKind === null || device.outerName === null
+      ? instructionsFor(i18n, kind as ProtectorKind)
+      : instructionsForBoth(
+          i18n,
+          { kind: kind as ProtectorKind, name: isolate(device.name) },
+          { kind: outerKind as ProtectorKind, name: isolate(device.outerName) },
+        )),
     ...(batteryMin === null
       ? []
       : [

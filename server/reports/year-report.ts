@@ -82,10 +82,10 @@ export async function yearReport(
 
 const strong = (text: string): Cell => ({ lines: [text], isStrong: true });
 
-function denominators(i18n: I18n, locale: Locale, { people }: YearReportFigures): Block[] {
-  const line = (label: string, count: number, meaning: string, isMain = false) => [
+function denominators(i18n: I18n, locale: Locale, { people, days }: YearReportFigures): Block[] {
+  const line = (label: string, count: number | null, meaning: string, isMain = false) => [
     isMain ? strong(label) : label,
-    formatNumber(count, 0, locale),
+    count === null ? NO_FIGURE : formatNumber(count, 0, locale),
     meaning,
   ];
   return [
@@ -131,7 +131,8 @@ function denominators(i18n: I18n, locale: Locale, { people }: YearReportFigures)
         ),
         line(
           i18n.t("Over at the ear"),
-          people.overAtEar,
+          // Older reports keep a zero for what no rule judged.
+          days.atEar === null ? null : people.overAtEar,
           i18n.t("of those in noise: on a day of the year"),
         ),
         line(
@@ -326,10 +327,10 @@ function gapsOf(i18n: I18n, locale: Locale, { gaps }: YearReportFigures): Block[
         { head: i18n.t("Count"), width: 12, isFigure: true },
         { head: i18n.t("What is counted"), width: 52 },
       ],
-      rows: gaps.map(({ kind, count }) => [
+      rows: gaps.map(({ kind, count, hasNoInterval }) => [
         gapWord(i18n, kind),
         formatNumber(count, 0, locale),
-        gapMeaning(i18n, kind),
+        gapMeaning(i18n, kind, hasNoInterval),
       ]),
     },
   ];
@@ -338,7 +339,7 @@ function gapsOf(i18n: I18n, locale: Locale, { gaps }: YearReportFigures): Block[
 function changesOf(
   i18n: I18n,
   locale: Locale,
-  { changes }: YearReportFigures,
+  { changes, days }: YearReportFigures,
   timeZone: string,
 ): Block[] {
   const heading = {
@@ -348,6 +349,8 @@ function changesOf(
   if (!changes)
     return [heading, { kind: "text", text: i18n.t("This is the first report of the year.") }];
   const n = (value: number) => formatNumber(value, 0, locale);
+  const atEar = (value: number) =>
+    days.atEar === null && value === 0 ? NO_FIGURE : formatNumber(value, 0, locale);
   return [
     heading,
     {
@@ -379,8 +382,8 @@ function changesOf(
         causeWord(i18n, one.cause),
         n(one.days),
         n(one.verdictDays),
-        n(one.nowOver),
-        n(one.noLongerOver),
+        atEar(one.nowOver),
+        atEar(one.noLongerOver),
       ]),
     },
     {

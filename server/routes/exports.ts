@@ -18,16 +18,21 @@ import { recordAudit } from "../lib/audit";
 import { cutOffOnError } from "../lib/cut-off";
 import { inTransaction } from "../lib/db";
 import { endpoint } from "../lib/endpoint";
+import { AppError } from "../lib/errors";
 import { type Actor, authorize, findVisible } from "../lib/policy";
 import { Site } from "../models/site";
 import { may, sitePolicy, yearPolicy } from "../policies";
 import { gapNames, yearGaps } from "../queries/gaps";
 
+/** @throws AppError other-year: a visitor's grant is for other years of the site; forbidden, not-found. */
 async function siteToExport(
   actor: Actor,
   { siteId, year }: { siteId: string; year: number },
 ): Promise<Site> {
   const site = await findVisible(Site, sitePolicy, siteId, actor);
+  const years = actor.visits.filter((visit) => visit.siteId === siteId).map(({ year }) => year);
+  if (years.length > 0 && !yearPolicy.can.export(actor, { siteId, year }))
+    throw new AppError("other-year", 403, { years: years.sort().join(", ") });
   authorize(yearPolicy, actor, "export", { siteId, year });
   return site;
 }

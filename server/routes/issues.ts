@@ -4,6 +4,7 @@ import {
   IssueFilter,
   IssueInput,
   IssuePage,
+  IssueSaved,
   IssueView,
   RefusalInput,
   RefusalList,
@@ -61,15 +62,15 @@ export function defineIssueRoutes(): void {
       may: may.officer,
       params: IdParams,
       body: IssueInput,
-      reply: IssueView,
+      reply: IssueSaved,
     },
     async ({ actor, params, body }) => {
       const worker = await findVisible(Worker, workerPolicy, params.id, actor, { lock: true });
       authorize(fitPolicy, actor, "issue", worker);
       const site = await findVisible(Site, sitePolicy, worker.siteId, actor);
-      const id = await issueProtector(actor, worker, site, body);
+      const { id, replacedName } = await issueProtector(actor, worker, site, body);
       // This answer is kept for a repeated key; the reason stands in its own row and nowhere else.
-      return { ...(await view(actor, id)), reason: null };
+      return { ...(await view(actor, id)), reason: null, replacedName };
     },
   );
 

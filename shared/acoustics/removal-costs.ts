@@ -20,6 +20,8 @@ export interface RemovalCosts {
   readonly tasks: readonly RemovalCost[];
   /** The day at the ear had it been worn throughout all of them, active part off, dB. */
   readonly throughoutDb: number;
+  /** The day itself is judged with an active part on; these figures are with it off. */
+  readonly isBesideCredit: boolean;
 }
 
 /**
@@ -60,5 +62,6 @@ export function removalCosts(input: DayInput, governing: RuleSetVersion): Remova
       }))
       .sort((a, b) => b.costDb - a.costDb),
     throughoutDb: dayDb - costOf(found.flatMap(([, { times }]) => times)),
+    isBesideCredit: atEar.creditedTaskIds.size > 0,
   };
 }

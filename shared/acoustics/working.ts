@@ -5,6 +5,7 @@ import { type ExchangeLaw, isSameLaw, lawOf, levelFactor } from "./exchange-law"
 import { creditedPeaks } from "./maximum";
 import { isSameFigure, outsideCriterion } from "./outside-criterion";
 import { evaluateAtEar } from "./protection/at-ear";
+import { isTooDeepForOwnFit, lcMinusLaDb } from "./protection/attenuation";
 import { audioLaw, withAudioAtEndDb } from "./protection/programme-audio";
 import { wornShareLevelDb } from "./protection/wearing-time";
 import type { SourceId } from "./sources";
@@ -728,7 +729,7 @@ class Builder {
       tables: [table(columns, rows)],
       equations: this.methodEquations(),
       details: this.protectorDetails(),
-      notes: [...this.scaleNotes(), ...this.openNotes()],
+      notes: [...this.scaleNotes(), ...this.deepNoiseNotes(), ...this.openNotes()],
       sources: [
         ...unique([...methods].flatMap((method) => this.methodSources(method))),
         ...(this.governing.protection.adequacy === "en-458"
@@ -891,6 +892,22 @@ class Builder {
               },
             ]
           : []),
+      ];
+    });
+  }
+
+  /** Where an own fit would replace the label, were the noise not so deep. */
+  private deepNoiseNotes(): WorkingText[] {
+    const rule = this.governing.protection;
+    return this.wornTasks().flatMap(({ task, level: of, protection }) => {
+      const lcLaDb = lcMinusLaDb(of);
+      if (protection.ownFitDb === null || protection.outer !== null || lcLaDb === null) return [];
+      if (!isTooDeepForOwnFit(rule, lcLaDb)) return [];
+      return [
+        text(
+          /*i18n*/ "{task} has LC − LA {difference}: in so deep a noise less comes off than an own fit says, which is rated in pink noise. There it can only lower the label.",
+          { task: name(task.name), difference: level(lcLaDb) },
+        ),
       ];
     });
   }

@@ -33,6 +33,8 @@ export function codeText(i18n: I18n, code: string, params: ProblemParams): strin
       return i18n.t("This page is out of date. Load it again and repeat the last step.");
     case "forbidden":
       return i18n.t("This is not yours to do. Nothing was changed.");
+    case "other-year":
+      return i18n.t("Your access is for {years}.", { years: params.years ?? "" });
     case "own-grant":
       return i18n.t("You can’t change your own roles. Ask another administrator.");
     case "own-proposal":

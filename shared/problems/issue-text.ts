@@ -293,6 +293,16 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("What has failed is not good until any date.");
     case "file-kind":
       return i18n.t("Photographs (PNG, JPEG, WebP) and PDF are taken, nothing else.");
+    case "file-not-as-named":
+      return params.found === "text/plain"
+        ? i18n.t(
+            "The content is not what the name says: {name} holds text, a web page perhaps. Photographs (PNG, JPEG, WebP) and PDF are taken.",
+            { name: String(params.name) },
+          )
+        : i18n.t(
+            "The content is not what the name says: {name} is neither a photograph (PNG, JPEG, WebP) nor a PDF.",
+            { name: String(params.name) },
+          );
     case "file-attached-already":
       return i18n.t("This file stands here already.");
     case "measure-without-date":
@@ -454,6 +464,10 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t(
         "Its data say nothing of this noise. Test the fit first: it goes out once that reaches what is needed.",
       );
+    case "fit-not-passed":
+      return i18n.t("This fit did not pass: say why it goes out all the same.");
+    case "fit-not-assessed":
+      return i18n.t("This fit is not assessed for one ear: say why it goes out all the same.");
     case "one-kind-offered":
       return i18n.t("Only one kind was on offer. Offer another, or say why not.");
     case "none-in-stock":

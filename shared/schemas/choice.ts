@@ -152,6 +152,7 @@ export const IssueSlip = z.object({
       outerName: z.string().nullable(),
       size: z.string().nullable(),
       kind: z.string(),
+      outerKind: z.string().nullable(),
       useName: z.string().nullable(),
       /** The task that decides its word; null: none of its use is in noise. */
       taskName: z.string().nullable(),
@@ -170,8 +171,10 @@ export const IssueSlip = z.object({
         .nullable(),
       /** When it was handed out, of two worn together the later; null: assigned, and not handed out yet. */
       issuedOn: IsoDate.nullable(),
+      /** Of two worn together the earlier. */
       cushionsDueOn: IsoDate.nullable(),
       tipsDueOn: IsoDate.nullable(),
+      /** Of two worn together the shorter. */
       batteryMin: z.number().nullable(),
     }),
   ),

@@ -163,6 +163,8 @@ export const FindingView = FindingRow.extend({
   ),
   /** Why nobody is told; null where somebody is. */
   untold: z.enum(["not-by-mail", "corrected", "long-ago", "no-address"]).nullable(),
+  /** Its site names somebody to whom it goes up once it is overdue. */
+  goesUp: z.boolean(),
 });
 export type FindingView = z.infer<typeof FindingView>;
 

@@ -97,6 +97,9 @@ export const FitTestView = z.object({
   outcome: z.enum(["issued", "tried"]),
   dueOn: IsoDate.nullable(),
   isVoid: z.boolean(),
+  /** Why it was struck out; null: it stands. */
+  struckReason: z.string().nullable(),
+  /** Who entered the revision in force; of a test that was struck out, who did that. */
   authorName: z.string().nullable(),
   can: Can("change"),
 });
@@ -113,8 +116,14 @@ export const AttenuationNeed = z.object({
   /** Null: no noise on record. */
   needDb: z.number().nullable(),
   outsideDb: z.number().nullable(),
+  /** The noise is known as a bound only: this is the most that it can be. */
+  isUpperBound: z.boolean(),
   targetDb: z.number().nullable(),
+  /** The task that asks; null: the shift as a whole does. */
+  taskId: z.uuid().nullable(),
   taskName: z.string().nullable(),
+  /** An own fit, rated in pink noise, says too much of it: it can only lower what the label gives there. */
+  isTooDeepForOwnFit: z.boolean(),
   /** The most that may come off before it is too much; null: the rule has no such scale. */
   mostDb: z.number().nullable(),
   reason: z.string().nullable(),
@@ -225,6 +234,19 @@ export const FittingDesk = z.object({
       isAcknowledged: z.boolean(),
     }),
   ),
+  /** What is assigned to this worker today or later: an issue takes the place of one of the same use. */
+  assigned: z.array(
+    z.object({
+      taskId: z.uuid().nullable(),
+      areaId: z.uuid().nullable(),
+      innerModelId: z.uuid(),
+      outerModelId: z.uuid().nullable(),
+      size: z.string().nullable(),
+      name: z.string(),
+      fromDate: IsoDate,
+      toDate: IsoDate.nullable(),
+    }),
+  ),
   can: Can("test", "issue"),
 });
 export type FittingDesk = z.infer<typeof FittingDesk>;
@@ -233,7 +255,12 @@ export type FittingDesk = z.infer<typeof FittingDesk>;
 export function reasonAskedFor(
   kindsOffered: readonly string[],
   stock: number | null,
-): "one-kind-offered" | "none-in-stock" | null {
+  /** The fit on which it goes out; null: none was tested. */
+  fit: Pick<FitTestView, "hasPassed" | "needDb"> | null,
+): "fit-not-passed" | "fit-not-assessed" | "one-kind-offered" | "none-in-stock" | null {
+  if (fit?.hasPassed === false) return "fit-not-passed";
+  // One ear alone reaches the need: nobody knows of the other.
+  if (fit?.hasPassed === null && fit.needDb !== null && fit.needDb > 0) return "fit-not-assessed";
   if (new Set(kindsOffered).size < 2) return "one-kind-offered";
   return stock !== null && stock < 1 ? "none-in-stock" : null;
 }
@@ -249,7 +276,7 @@ export const IssueInput = z.object({
   offeredModelIds: z.array(z.uuid()).min(1).max(40),
   wasInstructed: z.boolean(),
   isAcknowledged: z.boolean(),
-  /** Only one kind on offer, or none in stock: why all the same. */
+  /** The fit not passed or not assessed, only one kind on offer, or none in stock: why all the same. */
   reason: Reason.nullable().default(null),
 });
 export type IssueInput = z.infer<typeof IssueInput>;
@@ -281,6 +308,12 @@ export const IssueView = z.object({
   can: Can("end", "acknowledge"),
 });
 export type IssueView = z.infer<typeof IssueView>;
+/** What is answered to whoever hands one out. */
+export const IssueSaved = IssueView.extend({
+  /** What was assigned for the same use before, and ends with it; null: nothing, or the same device goes on. */
+  replacedName: z.string().nullable(),
+});
+export type IssueSaved = z.infer<typeof IssueSaved>;
 export const IssuePage = pageOf(IssueView);
 export const IssueFilter = PageQuery.extend({
   siteId: z.uuid().optional(),
@@ -302,8 +335,10 @@ export const RefusalView = RefusalInput.extend({
   modelName: z.string().nullable(),
   authorName: z.string().nullable(),
 });
+export type RefusalView = z.infer<typeof RefusalView>;
 
 export const RefusalList = z.object({ rows: z.array(RefusalView) });
+export type RefusalList = z.infer<typeof RefusalList>;
 /** What is answered to whoever enters one: its reason stands in its own table and nowhere else. */
 export const RefusalSaved = z.object({ id: z.uuid() });
 

@@ -7,6 +7,7 @@ export const PROBLEM_CODES = [
   "forbidden",
   "signed-out",
   "no-grant",
+  "other-year",
   "access-ended",
   "token-unknown",
   "token-over",

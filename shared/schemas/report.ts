@@ -40,8 +40,8 @@ export const YearReportFigures = z.object({
     neverMeasured: z.number(),
     /** Of those in noise: with a day that is open or not assessed. */
     undecided: z.number(),
-    /** Of those in noise: with a day over at the ear. */
-    overAtEar: z.number(),
+    /** Of those in noise: with a day over at the ear; null: no rule of the year judges there. */
+    overAtEar: z.number().nullable(),
   }),
   days: z.object({
     count: z.number(),

@@ -61,6 +61,8 @@ export const ResultView = z.object({
       statedPct: z.number(),
       wornCount: z.number(),
       seenCount: z.number(),
+      /** Who says so: rounds, the worker alone, or both. */
+      from: z.enum(["rounds", "own-reports", "both"]),
     }),
   ),
   earlier: z.array(ResultRef),

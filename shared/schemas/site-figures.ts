@@ -1,7 +1,7 @@
 import { z } from "zod";
 import { DutyKind } from "./duty";
 import { FindingKind } from "./finding";
-import { GapKind, GapsView } from "./waiting";
+import { GapsView } from "./waiting";
 
 /** A count of people; `few`: fewer than five; `withheld`: would give such a one away by subtraction. */
 export const FigureCell = z.union([z.number().int(), z.enum(["few", "withheld"])]);
@@ -53,7 +53,7 @@ export const SiteFiguresView = z.object({
     area: z.array(PeopleRow),
     task: z.array(PeopleRow),
   }),
-  gaps: z.array(z.object({ kind: GapKind, count: FigureCell })),
+  gaps: z.array(GapsView.shape.counts.element.extend({ count: FigureCell })),
   /** Open ones: under 30 days, under 90, older. */
   findings: z.array(z.object({ kind: FindingKind, ...Bands })),
   /** Overdue, within 30 days, later. */

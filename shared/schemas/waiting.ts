@@ -89,7 +89,14 @@ export const YearFileQuery = YearQuery.extend({
 /** Without a language: the reader's own. */
 export const YearDictionaryQuery = z.object({ language: Language.optional() });
 export const GapsView = z.object({
-  counts: z.array(z.object({ kind: GapKind, count: z.number() })),
+  counts: z.array(
+    z.object({
+      kind: GapKind,
+      count: z.number(),
+      /** Of fit tests: the site states no interval, so whoever was never tested is counted. */
+      hasNoInterval: z.literal(true).optional(),
+    }),
+  ),
   months: z.array(
     z.object({
       month: z.number(),

@@ -91,7 +91,8 @@ export const WearingTally = z.object({
       name: z.string(),
       employeeNumber: z.string(),
       taskIds: z.array(z.uuid()),
-      protectors: z.array(z.string()),
+      /** What is assigned for a task: its own before its area's, and that before the one for everywhere. */
+      protectors: z.array(z.object({ taskId: z.uuid(), name: z.string() })),
     }),
   ),
 });

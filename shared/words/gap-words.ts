@@ -38,15 +38,19 @@ export function gapWord(i18n: I18n, kind: Gap): string {
   }
 }
 
-/** What is counted. */
-export function gapMeaning(i18n: I18n, kind: Gap): string {
+/** What is counted; `hasNoInterval`: of fit tests, at a site that states none. */
+export function gapMeaning(i18n: I18n, kind: Gap, hasNoInterval = false): string {
   switch (kind) {
     case "not-measured":
       return i18n.t("people over 80 dB by a task’s level or an estimate, with no run of their own");
     case "no-protector":
       return i18n.t("people whose finding is open");
     case "not-fitted":
-      return i18n.t("people in noise with a protector, and no fit test within the site’s interval");
+      return hasNoInterval
+        ? i18n.t(
+            "no interval stated; people in noise with a protector, and never a fit test with what they wear",
+          )
+        : i18n.t("people in noise with a protector, and no fit test within the site’s interval");
     case "letter-late":
       return i18n.t("sent after the rule’s days, or not at all");
     case "not-trained":

@@ -1,5 +1,6 @@
 import { useLingui } from "@lingui/react";
 import type { ReactNode } from "react";
+import { ApiError } from "../lib/api";
 import { TextButton } from "./link";
 import { Problem } from "./problem";
 
@@ -15,11 +16,13 @@ export function Failed({
   onRetry?: () => void;
 }) {
   const { i18n } = useLingui();
+  // What is not theirs stays so, however often it is asked for.
+  const isRefused = error instanceof ApiError && error.status === 403;
   return (
     <p className="failed" role="alert">
       <span className="reversed">{i18n.t("Not shown")}</span>
       {children ?? <Problem error={error} />}{" "}
-      {onRetry && <TextButton onClick={onRetry}>{i18n.t("Try again")}</TextButton>}
+      {onRetry && !isRefused && <TextButton onClick={onRetry}>{i18n.t("Try again")}</TextButton>}
     </p>
   );
 }

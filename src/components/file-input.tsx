@@ -37,24 +37,25 @@ export function FileInput({
 }) {
   const { i18n } = useLingui();
   const [isSending, setIsSending] = useState(false);
-  const [error, setError] = useState<string>();
+  const [refused, setRefused] = useState<{ name: string; error: string } | null>(null);
 
   async function send(chosen: File) {
     setIsSending(true);
-    setError(undefined);
+    setRefused(null);
     try {
       const sent = await attachFile(chosen);
       onFiles([...files.filter(({ id }) => id !== sent.id), sent].slice(-atMost));
     } catch (failure) {
       const [issue] = failure instanceof ApiError ? failure.issues : [];
-      setError(issue ? issueText(i18n, issue) : problemText(i18n, failure));
+      const error = issue ? issueText(i18n, issue) : problemText(i18n, failure);
+      setRefused({ name: chosen.name, error });
     } finally {
       setIsSending(false);
     }
   }
 
   return (
-    <Field label={label} error={error ?? fault} isOptional={isOptional}>
+    <Field label={label} error={refused?.error ?? fault} isOptional={isOptional}>
       {({ readOnly: _, "aria-required": __, ...wires }) => (
         <div className="file-input">
           <input
@@ -72,6 +73,7 @@ export function FileInput({
             }}
           />
           {isSending && <p role="status">{i18n.t("Sending…")}</p>}
+          {refused && <p>{i18n.t("{name}: not taken", { name: refused.name })}</p>}
           {files.length > 0 && (
             <ul>
               {files.map((file) => (

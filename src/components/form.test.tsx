@@ -129,6 +129,32 @@ test("a form is filled by label alone, and saves what was meant", async () => {
   });
 });
 
+const Dates = z.object({ from: z.iso.date(), to: z.iso.date() });
+function DatesForm() {
+  const form = useSchemaForm(Dates, { defaultValues: { from: "", to: "" } });
+  return (
+    <Form aria-label="Dates" onSubmit={form.handleSubmit(() => undefined)}>
+      <DateField form={form} name="from" label="From" />
+      <DateField form={form} name="to" label="To" />
+      <SubmitButton>Save</SubmitButton>
+    </Form>
+  );
+}
+
+test("a date that was not written is needed, and one that is none is no date", async () => {
+  const user = userEvent.setup();
+  render(
+    <TestLanguage>
+      <DatesForm />
+    </TestLanguage>,
+  );
+  await user.type(screen.getByRole("textbox", { name: "To" }), "soon");
+  await user.click(screen.getByRole("button", { name: "Save" }));
+  await screen.findByText("This is needed.");
+  expect(screen.getAllByText("This is needed.")).toHaveLength(1);
+  expect(screen.getAllByText("This is not a date.")).toHaveLength(1);
+});
+
 test("unit, note and error belong to their field; the first wrong field has the focus", async () => {
   const { onSave, user } = show();
   const level = screen.getByRole("textbox", { name: "Level" });

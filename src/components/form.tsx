@@ -95,8 +95,12 @@ export function useSchemaForm<Schema extends FormSchema>(
         setAt(errors, path, { type: issue.code, message: issueText(i18n, issue) });
     };
     for (const { path, code } of unread) put(path, { code, params: {} });
-    for (const issue of parsed.error?.issues ?? [])
-      put(issue.path.map(String).join(".") || "root", toFieldIssue(issue));
+    for (const issue of parsed.error?.issues ?? []) {
+      const path = issue.path.map(String).join(".");
+      // Nothing was written that could be written wrongly.
+      const isMissing = issue.code === "invalid_format" && path !== "" && get(values, path) === "";
+      put(path || "root", isMissing ? { code: "required", params: {} } : toFieldIssue(issue));
+    }
     return { values: {}, errors: errors as FieldErrors<z.input<Schema>> };
   };
   const form = useForm<z.input<Schema>, unknown, z.output<Schema>>({

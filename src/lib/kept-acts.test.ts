@@ -1,5 +1,5 @@
 import { afterEach, beforeEach, expect, test, vi } from "vitest";
-import { keptActsOf } from "./kept-acts";
+import { hasWordsToPassOn, keptActsOf } from "./kept-acts";
 import { countUnsent, forgetKept } from "./kept-list";
 
 type Answer = { status: number; body: unknown } | "no-connection";
@@ -86,6 +86,40 @@ test("what another changed meanwhile is a conflict, and goes only when chosen, a
   await keptActsOf(userId).sendAll();
   expect(sent[1]?.headers.get("if-match")).toBe("7");
   expect(sent[1]?.headers.get("idempotency-key")).not.toBe(key);
+});
+
+test("words about an order that was closed meanwhile can go on as a comment, where that may be made", async () => {
+  const acts = keptActsOf(userId);
+  const { key } = acts.hold({
+    path: "/findings/f/steps",
+    body: { kind: "cannot", text: "No muffs left" },
+    revision: 3,
+    words: { kind: "cannot", findingId: "f", workerName: "D. Tavernor", text: "No muffs left" },
+  });
+  acts.release(key, true);
+  const closed = (comment: boolean): Answer => {
+    const { status, body } = stale("closed") as { status: number; body: { current: object } };
+    return { status, body: { ...body, current: { ...body.current, can: { comment } } } };
+  };
+  answers = [session(userId), closed(true)];
+  await acts.sendAll();
+  const [stands] = acts.list();
+  expect(stands && hasWordsToPassOn(stands)).toBe(true);
+  acts.asComment(key);
+  expect(acts.list()).toMatchObject([
+    { state: "unsent", revision: 7, words: { kind: "comment", text: "No muffs left" } },
+  ]);
+  answers = [session(userId), closed(false)];
+  await acts.sendAll();
+  const [again] = acts.list();
+  expect(again && hasWordsToPassOn(again)).toBe(false);
+  acts.asComment(again?.key ?? "");
+  answers = [session(userId), { status: 200, body: { revision: 8 } }];
+  sent = [];
+  await acts.sendAll();
+  expect(sent[1]?.body).toBe(JSON.stringify({ kind: "comment", text: "No muffs left" }));
+  expect(sent[1]?.headers.get("if-match")).toBe("7");
+  expect(acts.list()).toEqual([]);
 });
 
 test("what somebody has done already is not done again", async () => {

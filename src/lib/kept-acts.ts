@@ -30,6 +30,8 @@ export interface StandsNow {
   readonly revision: number;
   readonly byName: string | null;
   readonly text: string | null;
+  /** What cannot be done any more can still be said. */
+  readonly canComment?: boolean;
 }
 
 /** One change somebody made, with all that is needed to send it once: later, and by them only. */
@@ -70,6 +72,7 @@ const isAct = (value: unknown): value is KeptAct =>
 interface Reply {
   readonly revision?: number;
   readonly state?: string;
+  readonly can?: { readonly comment?: boolean };
   readonly steps?: readonly { readonly authorName: string | null; readonly text: string | null }[];
 }
 const anyReply: ReplySchema<Reply> = { parse: (value) => (value ?? {}) as Reply };
@@ -87,8 +90,15 @@ function standsNow(error: unknown): StandsNow | null {
     revision: current.revision,
     byName: last?.authorName ?? null,
     text: last?.text ?? null,
+    canComment: current.can?.comment === true,
   };
 }
+
+/** Words that were typed, where what they belonged to is over: they may be passed on as a comment. */
+export const hasWordsToPassOn = ({ words, stands }: KeptAct): boolean =>
+  stands?.canComment === true &&
+  (words.kind === "cannot" || (words.kind === "comment" && stands.state === "closed")) &&
+  words.text.trim() !== "";
 
 /** What was to be done is done: nothing is left to send. */
 const isAlreadyDone = ({ words }: KeptAct, { state }: StandsNow) =>
@@ -117,6 +127,8 @@ export interface KeptActs {
   drop(key: string): void;
   /** Anew on what stands now, as another act. */
   again(key: string): void;
+  /** Its words alone, as a comment on what stands now. */
+  asComment(key: string): void;
   /** Sends what waits, one after the other, where the same person is signed in. */
   sendAll(): Promise<readonly Settled[]>;
 }
@@ -172,6 +184,27 @@ function createKeptActs(kept: KeptList<KeptAct>, userId: string): KeptActs {
     }
   }
 
+  /** What is in a conflict as another act, on what stands now. */
+  function putAnew(
+    key: string,
+    as: (act: KeptAct) => Pick<KeptAct, "body" | "words"> | null,
+  ): void {
+    const act = kept.list().find((other) => other.key === key);
+    const what = act && as(act);
+    if (!act?.stands || !what) return;
+    kept.remove(key);
+    kept.put({
+      ...act,
+      ...what,
+      key: newChangeKey(),
+      revision: act.stands.revision,
+      state: "unsent",
+      stands: null,
+      code: null,
+    });
+    changed();
+  }
+
   return {
     list: () => shown,
     subscribe(listener) {
@@ -206,20 +239,16 @@ function createKeptActs(kept: KeptList<KeptAct>, userId: string): KeptActs {
       if (key !== sendingKey) kept.remove(key);
       changed();
     },
-    again(key) {
-      const act = kept.list().find((other) => other.key === key);
-      if (!act?.stands) return;
-      kept.remove(key);
-      kept.put({
-        ...act,
-        key: newChangeKey(),
-        revision: act.stands.revision,
-        state: "unsent",
-        stands: null,
-        code: null,
-      });
-      changed();
-    },
+    again: (key) => putAnew(key, ({ body, words }) => ({ body, words })),
+    asComment: (key) =>
+      putAnew(key, ({ words }) =>
+        words.kind === "round"
+          ? null
+          : {
+              body: { kind: "comment", text: words.text },
+              words: { ...words, kind: "comment" },
+            },
+      ),
     async sendAll() {
       if (isSending) return [];
       isSending = true;

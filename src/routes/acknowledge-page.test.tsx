@@ -90,4 +90,6 @@ test("a link that has run out, one that leads nowhere, and somebody else's, in w
   cleanup();
   show(() => reply(403, { code: "link-not-yours", params: {}, issues: [] }));
   await screen.findByText(/This letter is to somebody else/);
+  expect(screen.queryByText("Not shown")).toBeNull();
+  expect(screen.queryByRole("button", { name: "Try again" })).toBeNull();
 });

@@ -9,6 +9,7 @@ import { Failed } from "../components/failed";
 import { FormProblem } from "../components/form-problem";
 import { LangSwitch } from "../components/lang-switch";
 import { Folio, Page, PageBody, PageHead, RunningHead } from "../components/page";
+import { Problem } from "../components/problem";
 import { ApiError, api } from "../lib/api";
 import { readAs, rememberChoice, useLocale } from "../lib/i18n";
 import { useMoveFocus } from "../lib/move-focus";
@@ -50,6 +51,7 @@ export function Component() {
   useEffect(() => {
     if (language) void readAs(i18n, language, async (chosen) => rememberChoice(chosen));
   }, [i18n, language]);
+  const isSomebodyElses = error instanceof ApiError && error.code === "link-not-yours";
   const isGone = error instanceof ApiError && error.status === 404;
   return (
     <Page head={<RunningHead account={<LangSwitch />} />} folio={<Folio />}>
@@ -68,6 +70,10 @@ export function Component() {
               {i18n.t(
                 "This link leads to no letter. Copy the whole of it from the mail, or ask the safety officer.",
               )}
+            </p>
+          ) : isSomebodyElses ? (
+            <p role="alert">
+              <Problem error={error} />
             </p>
           ) : (
             error && <Failed error={error} onRetry={() => void letter.refetch()} />

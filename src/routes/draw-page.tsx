@@ -53,7 +53,10 @@ export function Component() {
                 })}
               </p>
               <p>
-                {i18n.t("SHA-256 of their ids in order, one a line:")}{" "}
+                {i18n.t(
+                  "SHA-256 of the ids of all {count} results that were drawn from, in order, one a line:",
+                  { count: formatNumber(data.drawnFrom, 0, locale) },
+                )}{" "}
                 <span className="mono draw-hash">{data.drawnFromSha256}</span>
               </p>
             </MarginNote>

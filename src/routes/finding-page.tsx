@@ -14,7 +14,7 @@ import {
   protectorNames,
   remedyOf,
 } from "../../shared/findings/facts";
-import { NEWS_FOR_DAYS } from "../../shared/findings/notified";
+import { isOverdue } from "../../shared/findings/overdue";
 import {
   atEarFigure,
   inOrderSentence,
@@ -53,6 +53,7 @@ import { Papers } from "../features/findings/papers";
 import { ProofTable } from "../features/findings/proof";
 import { findingQueries } from "../features/findings/queries";
 import { StepForm } from "../features/findings/step-form";
+import { Told, type ToldNotice } from "../features/findings/told";
 import { TrustTable } from "../features/findings/trust";
 import { LookAtNotices } from "../features/notices/outgoing-notice";
 import { OfficeLink } from "../features/session/office-link";
@@ -163,7 +164,7 @@ function Finding({ finding }: { finding: FindingView }) {
           <Trust finding={finding} followUp={followUp} />
         </Section>
         <Section title={i18n.t("Who has been told")} id="told">
-          <Told finding={finding} />
+          <WhoWasTold finding={finding} today={todayAt(finding.siteId)} />
         </Section>
         {finding.state !== "closed" && (
           <Section title={i18n.t("What to do today")} id="today">
@@ -568,81 +569,12 @@ function ownReasonWords(
   }
 }
 
-function toldWord(i18n: ReturnType<typeof useLingui>["i18n"], state: string): string {
-  switch (state) {
-    case "waiting":
-      return i18n.t("will be told");
-    case "held":
-      return i18n.t("held");
-    case "sending":
-      return i18n.t("is being sent");
-    case "sent":
-      return i18n.t("was told");
-    case "possibly-sent":
-      return i18n.t("possibly sent");
-    case "failed":
-      return i18n.t("not sent");
-    case "bounced":
-      return i18n.t("came back undeliverable");
-    case "on-paper":
-      return i18n.t("was told on paper or in person");
-    default:
-      return i18n.t("withdrawn");
-  }
-}
-
-function untoldWords(
-  i18n: ReturnType<typeof useLingui>["i18n"],
-  untold: NonNullable<FindingView["untold"]>,
-): string {
-  switch (untold) {
-    case "not-by-mail":
-      return i18n.t("Nobody by mail; it waits on this page.");
-    case "corrected":
-      return i18n.t("Nobody: the days that showed it were corrected before anybody was told.");
-    case "long-ago":
-      return i18n.t(
-        "Nobody by mail: its last day lay more than {days} days back when it was noticed.",
-        { days: NEWS_FOR_DAYS },
-      );
-    case "no-address":
-      return i18n.t("Nobody: nobody who is to be told of it has an address for mail.");
-  }
-}
-
-/** Who was told of it by mail, and whom it went up to. */
-function Told({ finding }: { finding: FindingView }) {
+function WhoWasTold({ finding, today }: { finding: FindingView; today: string }) {
   const { i18n } = useLingui();
-  const locale = useLocale();
-  const user = useUser();
-  const [look, setLook] = useState<{ id: string; recipientName: string } | null>(null);
-  const timeZone = user.sites.find(({ id }) => id === finding.siteId)?.timeZone ?? "UTC";
+  const [look, setLook] = useState<ToldNotice | null>(null);
   return (
-    <div className="told-list">
-      {finding.untold && <p>{untoldWords(i18n, finding.untold)}</p>}
-      {finding.told.map((told) => (
-        <p key={told.noticeId}>
-          <b className="label-ink">{told.name}</b> {toldWord(i18n, told.state)}
-          {told.at && ` ${formatInstant(told.at, timeZone, locale)}`}.{" "}
-          <TextButton onClick={() => setLook({ id: told.noticeId, recipientName: told.name })}>
-            {i18n.t("Look")}
-          </TextButton>
-        </p>
-      ))}
-      {finding.wentUp && (
-        <p>
-          {i18n.t("Overdue, it went up to {name} on {date}.", {
-            name: finding.wentUp.name,
-            date: formatDate(finding.wentUp.on, locale),
-          })}
-          {finding.wentUp.hasBounced && (
-            <span className="field-error">
-              {" "}
-              {i18n.t("That mail came back undeliverable: tell them yourself.")}
-            </span>
-          )}
-        </p>
-      )}
+    <>
+      <Told finding={finding} today={today} onLook={setLook} />
       {look && (
         <LookAtNotices
           notices={[look]}
@@ -650,7 +582,7 @@ function Told({ finding }: { finding: FindingView }) {
           actions={<Button onClick={() => setLook(null)}>{i18n.t("Close the letter")}</Button>}
         />
       )}
-    </div>
+    </>
   );
 }
 
@@ -679,7 +611,7 @@ function Margin({ finding }: { finding: FindingView }) {
         {finding.dueOn && finding.state !== "closed" && (
           <p>
             {i18n.t("Due {date}.", { date: formatDate(finding.dueOn, locale) })}{" "}
-            {finding.dueOn < todayAt(finding.siteId) && finding.state !== "done" && (
+            {isOverdue(finding, todayAt(finding.siteId)) && (
               <b className="label-ink">{i18n.t("Overdue.")}</b>
             )}
           </p>

@@ -8,7 +8,8 @@ import {
   FittingDesk,
   FittingFound,
   IssuePage,
-  IssueView,
+  IssueSaved,
+  RefusalList,
 } from "../../shared/schemas/fit";
 import { ProtectorList } from "../../shared/schemas/protector";
 import { AreaList } from "../../shared/schemas/site";
@@ -62,8 +63,11 @@ const desk = (overrides: Partial<FittingDesk> = {}): FittingDesk => ({
   need: {
     needDb: 13,
     outsideDb: 98,
+    isUpperBound: false,
     targetDb: 85,
+    taskId: null,
     taskName: "Chipping",
+    isTooDeepForOwnFit: false,
     mostDb: 28,
     reason: null,
   },
@@ -76,6 +80,7 @@ const desk = (overrides: Partial<FittingDesk> = {}): FittingDesk => ({
   pairs: [],
   tests: [],
   issued: [],
+  assigned: [],
   can: { test: true, issue: true },
   ...overrides,
 });
@@ -104,11 +109,12 @@ const tested = (facts: FitTestView["facts"], more: Partial<FitTestView> = {}): F
   outcome: "tried",
   dueOn: null,
   isVoid: false,
+  struckReason: null,
   authorName: "S. Ferrand",
   can: { change: true },
   ...more,
 });
-const issued: IssueView = {
+const issued: IssueSaved = {
   id: id(8),
   revision: 1,
   siteId: site,
@@ -128,6 +134,7 @@ const issued: IssueView = {
   endedHow: null,
   parDb: 18,
   authorName: "S. Ferrand",
+  replacedName: null,
   can: { end: true, acknowledge: false },
 };
 
@@ -138,12 +145,14 @@ interface Sent {
 }
 let sent: Sent[];
 let at: FittingDesk;
+let refusals: RefusalList["rows"];
 let answerIssue: () => { status: number; body: object };
 
 beforeEach(() => {
   sent = [];
   at = desk();
-  answerIssue = () => ({ status: 201, body: IssueView.parse(issued) });
+  refusals = [];
+  answerIssue = () => ({ status: 201, body: IssueSaved.parse(issued) });
   sessionStorage.clear();
   vi.stubGlobal("fetch", async (path: string, init: RequestInit = {}) => {
     if (init.method === "GET") return Response.json(read(path));
@@ -176,6 +185,7 @@ function read(path: string): object {
           : [];
     return FittingFound.parse({ rows });
   }
+  if (pathname.endsWith("/refusals")) return RefusalList.parse({ rows: refusals });
   if (pathname.endsWith("/fitting")) return FittingDesk.parse(at);
   if (pathname === "/api/issues") return IssuePage.parse({ rows: [], next: null });
   if (pathname === "/api/tasks") return TaskList.parse({ rows: [] });
@@ -371,7 +381,28 @@ describe("the fitting desk", () => {
     expect(within(form).getByText(/single trial says nothing/)).toBeVisible();
     await user.clear(within(left).getByLabelText("Trial 1"));
     await user.type(within(left).getByLabelText("Trial 1"), "70");
-    expect(within(form).getByRole("alert")).toHaveTextContent(/more than an ear can have/);
+    expect(within(left).getByText(/^Left ear, trial 1: 70.0 dB is more than/)).toBeVisible();
+    expect(within(form).getByText("Not rated while a trial can’t be right.")).toBeVisible();
+  });
+
+  test("each trial that no ear can have is marked once, at its ear, and nothing is sent", async () => {
+    const user = userEvent.setup();
+    open(paths.fittingOf(worker));
+    const form = await screen.findByRole("form", { name: "Test the fit" });
+    const [left, right] = ["Left ear", "Right ear"].map((name) =>
+      within(form).getByRole("group", { name }),
+    ) as [HTMLElement, HTMLElement];
+    await user.type(within(left).getByLabelText("Trial 1"), "70");
+    await user.type(within(right).getByLabelText("Trial 1"), "20");
+    await user.type(within(right).getByLabelText("Trial 2"), "69");
+    await user.click(within(form).getByRole("button", { name: "Record the fit" }));
+    expect(within(left).getByText(/^Left ear, trial 1: 70.0 dB is more than/)).toBeVisible();
+    expect(within(right).getByText(/^Right ear, trial 2: 69.0 dB is more than/)).toBeVisible();
+    expect(within(form).getAllByText(/is more than an ear can have/)).toHaveLength(2);
+    expect(within(left).getByLabelText("Trial 1")).toHaveAttribute("aria-invalid", "true");
+    expect(within(right).getByLabelText("Trial 1")).not.toHaveAttribute("aria-invalid");
+    expect(within(right).getByLabelText("Trial 2")).toHaveAttribute("aria-invalid", "true");
+    expect(sent).toEqual([]);
   });
 
   test("what is out of the question says why, and is not held out to be tried", async () => {
@@ -399,7 +430,17 @@ describe("the fitting desk", () => {
   test("where nothing has to come off nothing is passed, and under Appendix B the label less 7 stands beside", async () => {
     at = desk({
       ruleSetKey: "us-general-industry",
-      need: { needDb: 0, outsideDb: 84, targetDb: 90, taskName: null, mostDb: null, reason: null },
+      need: {
+        needDb: 0,
+        outsideDb: 84,
+        isUpperBound: false,
+        targetDb: 90,
+        taskId: null,
+        taskName: null,
+        isTooDeepForOwnFit: false,
+        mostDb: null,
+        reason: null,
+      },
       candidates: [
         candidate(muff, "Fenmuff", "earmuff", {
           labelLess7Db: 17,
@@ -495,6 +536,96 @@ describe("the fitting desk", () => {
     expect(sent[0]?.body.reason).toBeNull();
   }, 30_000);
 
+  test("a struck-out fit says why, and by whom", async () => {
+    const facts = { leftDb: [24], rightDb: [24], methodSdDb: 3, bands: null };
+    at = desk({ tests: [tested(facts, { isVoid: true, struckReason: "Wrong worker" })] });
+    open(paths.fittingOf(worker));
+    expect(await screen.findByText("struck out")).toBeVisible();
+    expect(screen.getByText(/^.?Wrong worker.?, .?S\. Ferrand.?$/)).toBeVisible();
+  });
+
+  test("a fit of one ear alone, or one that failed, goes out only for a reason", async () => {
+    const user = userEvent.setup();
+    const facts = { leftDb: [24], rightDb: [], methodSdDb: 3, bands: null };
+    at = desk({ tests: [tested(facts, { rightDb: null, hasPassed: null })] });
+    const oneEar = open(paths.fittingOf(worker));
+    await user.click(await screen.findByRole("button", { name: "Issue Fenmuff" }));
+    const issue = await screen.findByRole("form", { name: "Issue Fenmuff" });
+    await user.click(within(issue).getByLabelText("Alder foam"));
+    expect(within(issue).getByText(/not assessed for one ear\. Only officers/)).toBeVisible();
+    await user.click(within(issue).getByRole("button", { name: "Issue this" }));
+    expect(await within(issue).findByText(/say why it goes out all the same/)).toBeVisible();
+    expect(sent).toEqual([]);
+    await user.type(within(issue).getByLabelText("All the same, because"), "right ear later");
+    await user.click(within(issue).getByRole("button", { name: "Issue this" }));
+    await waitFor(() => expect(sent[0]?.body.reason).toBe("right ear later"));
+    oneEar.unmount();
+
+    sessionStorage.clear();
+    at = desk({ tests: [tested(facts, { hasPassed: false })] });
+    open(paths.fittingOf(worker));
+    await user.click(await screen.findByRole("button", { name: "Issue Fenmuff" }));
+    const failed = await screen.findByRole("form", { name: "Issue Fenmuff" });
+    await user.click(within(failed).getByLabelText("Alder foam"));
+    expect(within(failed).getByText(/This fit did not pass\. Only officers/)).toBeVisible();
+  }, 30_000);
+
+  test("what it takes the place of is named before and after", async () => {
+    const user = userEvent.setup();
+    const pair = {
+      taskId: null,
+      areaId: null,
+      innerModelId: plug,
+      outerModelId: muff,
+      size: null,
+      name: "Alder foam + Fenmuff",
+      fromDate: "2026-03-02",
+      toDate: null,
+    };
+    at = desk({
+      assigned: [pair],
+      tests: [tested({ leftDb: [24], rightDb: [24], methodSdDb: 3, bands: null })],
+    });
+    answerIssue = () => ({
+      status: 201,
+      body: IssueSaved.parse({ ...issued, replacedName: pair.name }),
+    });
+    open(paths.fittingOf(worker));
+    await user.click(await screen.findByRole("button", { name: "Issue Fenmuff" }));
+    const issue = await screen.findByRole("form", { name: "Issue Fenmuff" });
+    expect(
+      within(issue).getByText(/^Replaces Alder foam \+ Fenmuff, assigned for this since 2 Mar/),
+    ).toBeVisible();
+    await user.click(within(issue).getByLabelText("Alder foam"));
+    await user.click(within(issue).getByRole("button", { name: "Issue this" }));
+    expect(
+      await screen.findByText(/It replaces Alder foam \+ Fenmuff, everywhere in noise\.$/),
+    ).toBeVisible();
+  }, 30_000);
+
+  test("what the worker refused stands at the desk and beside the device, which can still be tried", async () => {
+    const user = userEvent.setup();
+    refusals = [
+      {
+        id: id(11),
+        workerId: worker,
+        modelId: plug,
+        modelName: "Alder foam",
+        kind: "cannot-wear",
+        happenedOn: "2026-11-12",
+        reason: "Inflamed ear canal",
+        authorName: "S. Ferrand",
+      },
+    ];
+    open(paths.fittingOf(worker));
+    expect(await screen.findByText(/^this worker cannot wear it, said on 12 Nov/)).toBeVisible();
+    expect(screen.getByText("Inflamed ear canal")).toBeVisible();
+    expect(screen.getByRole("button", { name: "Try Alder foam" })).toBeEnabled();
+    await user.click(screen.getByRole("button", { name: "Enter a refusal or non-wear" }));
+    const form = screen.getByRole("form", { name: "Refusal or non-wear" });
+    expect(within(form).getByLabelText("Reason")).toBeVisible();
+  });
+
   test("what is out with the worker says issued, and another one is offered", async () => {
     at = desk({
       tests: [
@@ -557,7 +688,7 @@ describe("the fitting desk", () => {
     expect(within(issue).getByLabelText(/was shown/)).toBeChecked();
     expect(within(right).getByLabelText("Trial 1")).toHaveValue("19.5");
     await user.type(within(issue).getByLabelText("All the same, because"), "from the display");
-    answerIssue = () => ({ status: 201, body: IssueView.parse(issued) });
+    answerIssue = () => ({ status: 201, body: IssueSaved.parse(issued) });
     await user.click(within(issue).getByRole("button", { name: "Issue this" }));
     await waitFor(() => expect(sent).toHaveLength(2));
     expect(sent[1]?.body.reason).toBe("from the display");
@@ -570,8 +701,11 @@ describe("the fitting desk", () => {
       need: {
         needDb: null,
         outsideDb: null,
+        isUpperBound: false,
         targetDb: null,
+        taskId: null,
         taskName: null,
+        isTooDeepForOwnFit: false,
         mostDb: null,
         reason: "no-noise",
       },

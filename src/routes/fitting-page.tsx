@@ -24,6 +24,7 @@ import { IssueForm, type ToIssue } from "../features/fits/issue-form";
 import { IssuesTable } from "../features/fits/issues-table";
 import { NumberForm, type NumberFormHandle } from "../features/fits/number-form";
 import { fitQueries } from "../features/fits/queries";
+import { Refusals } from "../features/fits/refusals";
 import { useUser } from "../features/session/session";
 import { useLocale } from "../lib/i18n";
 import { references } from "../lib/references";
@@ -128,6 +129,8 @@ function AtDesk({
   const [toIssue, setToIssue] = useState<ToIssue | null>(null);
   const protectors = useQuery(references.protectors());
   const issues = useInfiniteQuery(fitQueries.issues({ workerId: worker.id, state: "open" }));
+  // Why may be a medical reason: whoever hands devices out is an officer, and reads it.
+  const refusals = useQuery({ ...fitQueries.refusals(worker.id), enabled: can.issue });
   const sizes = useMemo(
     () => new Map(protectors.data?.rows.map(({ id, data }) => [id, data.sizes] as const)),
     [protectors.data],
@@ -189,6 +192,7 @@ function AtDesk({
             caption={i18n.t("Devices in the order in which they suit this noise")}
             inHead={i18n.t("To be tried")}
             candidates={desk.candidates}
+            refusals={refusals.data}
             activeCredit={activeCredit}
             chosen={chosenId}
             pickWord={i18n.t("Try")}
@@ -204,6 +208,7 @@ function AtDesk({
                 caption={i18n.t("Two together, in the order in which they suit this noise")}
                 inHead={i18n.t("A plug under a muff")}
                 candidates={desk.pairs}
+                refusals={refusals.data}
                 activeCredit={activeCredit}
                 chosen=""
                 hasOwnFit={false}
@@ -256,13 +261,22 @@ function AtDesk({
                   .filter(Boolean)
                   .join(", ");
                 onIssued(
-                  stockLeft === null
-                    ? i18n.t("{device} is issued to {name}.", { device, name: issue.workerName })
-                    : i18n.t("{device} is issued to {name}; {stock} left in stock.", {
-                        device,
-                        name: issue.workerName,
-                        stock: stockLeft,
+                  [
+                    stockLeft === null
+                      ? i18n.t("{device} is issued to {name}.", { device, name: issue.workerName })
+                      : i18n.t("{device} is issued to {name}; {stock} left in stock.", {
+                          device,
+                          name: issue.workerName,
+                          stock: stockLeft,
+                        }),
+                    issue.replacedName !== null &&
+                      i18n.t("It replaces {protector}, {use}.", {
+                        protector: issue.replacedName,
+                        use: issue.useName ?? i18n.t("everywhere in noise"),
                       }),
+                  ]
+                    .filter(Boolean)
+                    .join(" "),
                 );
               }}
               onLeave={() => setToIssue(null)}
@@ -324,6 +338,11 @@ function AtDesk({
           </p>
         )}
       </Section>
+      {can.issue && (
+        <Section title={i18n.t("Refusals and non-wear")} id="refusals">
+          <Refusals workerId={worker.id} today={today} />
+        </Section>
+      )}
     </div>
   );
 }
@@ -372,6 +391,7 @@ function Need({ desk: { need, worker } }: { desk: FittingDesk }) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const { needDb, outsideDb, targetDb, mostDb, taskName, reason } = need;
+  const atMost = need.isUpperBound ? "upper" : "exact";
   const why = needReasonText(i18n, reason);
   return (
     <div className="desk-need">
@@ -380,13 +400,17 @@ function Need({ desk: { need, worker } }: { desk: FittingDesk }) {
       ) : (
         <p className="lead">
           {hasToPass(needDb) ? (
-            <b>{i18n.t("{need} dB have to come off.", { need: formatLevel(needDb, locale) })}</b>
+            <b>
+              {i18n.t("{need} dB have to come off.", {
+                need: formatLevel(needDb, locale, atMost),
+              })}
+            </b>
           ) : (
             <b>{i18n.t("Nothing has to come off.")}</b>
           )}{" "}
           {taskName === null
             ? i18n.t("The shift has {outside} dB(A), and {target} may reach the ear.", {
-                outside: formatLevel(outsideDb, locale),
+                outside: formatLevel(outsideDb, locale, atMost),
                 target: formatLimit(targetDb, locale),
               })
             : i18n.t("{task} has {outside} dB(A), and {target} may reach the ear.", {
@@ -399,6 +423,13 @@ function Need({ desk: { need, worker } }: { desk: FittingDesk }) {
         </p>
       )}
       {why && <p className="beneath">{why}</p>}
+      {need.isTooDeepForOwnFit && (
+        <p className="beneath">
+          {i18n.t(
+            "So deep a noise comes through more than a fit says, which is rated in pink noise: there it can only lower the label. A check with two microphones can be rated in this very noise.",
+          )}
+        </p>
+      )}
       {worker.personalTargetDb !== null && (
         <p className="beneath">{i18n.t("A stricter target is set for this worker.")}</p>
       )}

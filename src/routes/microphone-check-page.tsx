@@ -5,6 +5,7 @@ import { localDate } from "../../shared/time/zone";
 import { Failed } from "../components/failed";
 import { TextLink } from "../components/link";
 import { Folio, MarginNote, PageBody, PageHead, Section } from "../components/page";
+import { fitQueries } from "../features/fits/queries";
 import { MicrophoneCheckForm } from "../features/microphone-check/check-form";
 import { ChecksTable } from "../features/microphone-check/checks-table";
 import { checkQueries } from "../features/microphone-check/queries";
@@ -65,10 +66,16 @@ function NewCheck({ workerId }: { workerId: string }) {
   const timeZone = useTimeZone(worker?.siteId ?? "");
   const models = useQuery(protectorQueries.list());
   const tasks = useQuery({ ...taskQueries.list(worker?.siteId), enabled: worker !== undefined });
+  const desk = useQuery({ ...fitQueries.desk(workerId), enabled: hasRole(user, "officer") });
   if (!worker || !hasRole(user, "officer")) return null;
   const failed = [models, tasks].find(({ isError }) => isError);
   if (failed) return <Failed error={failed.error} onRetry={() => void failed.refetch()} />;
-  if (!models.data || !tasks.data) return <p className="loading-line">{i18n.t("Being loaded…")}</p>;
+  // Without rules at the site there is no need, and nothing is filled in.
+  if (!models.data || !tasks.data || desk.isPending)
+    return <p className="loading-line">{i18n.t("Being loaded…")}</p>;
+  const withBands = tasks.data.rows.filter(
+    ({ isArchived, level }) => !isArchived && level?.octaveBandsDb,
+  );
   const today = localDate(new Date(), timeZone);
   const worn = worker.assignments.find(
     ({ fromDate, toDate }) => fromDate <= today && (toDate === null || toDate >= today),
@@ -87,9 +94,8 @@ function NewCheck({ workerId }: { workerId: string }) {
           }))}
         modelId={search.get("model") ?? worn?.innerModelId ?? null}
         ear={search.get("ear") === "right" ? "right" : "left"}
-        tasks={tasks.data.rows
-          .filter(({ isArchived, level }) => !isArchived && level?.octaveBandsDb)
-          .map(({ id, name }) => ({ value: id, label: name }))}
+        taskId={withBands.find(({ id }) => id === desk.data?.need.taskId)?.id ?? null}
+        tasks={withBands.map(({ id, name }) => ({ value: id, label: name }))}
         onSent={({ id }) => navigate(paths.microphoneResult(worker.id, id))}
       />
     </Section>

@@ -175,19 +175,33 @@ function endOf(start: string, lengthMin: number): string {
 function WearingSeen({ seen }: { seen: ResultView["wearingSeen"] }) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  return seen.map(({ taskId, taskName, statedPct, wornCount, seenCount }) => (
-    <p key={taskId} className="working-strip-words">
-      {i18n.t(
-        "{task}: the shift states that it was worn {stated} % of the time; rounds saw it worn in {worn} of {seen} looks. What the shift states counts.",
-        {
-          task: taskName,
-          stated: formatNumber(statedPct, 0, locale),
-          worn: wornCount,
-          seen: seenCount,
-        },
-      )}
-    </p>
-  ));
+  return seen.map(({ taskId, taskName, statedPct, wornCount, seenCount, from }) => {
+    const values = {
+      task: taskName,
+      stated: formatNumber(statedPct, 0, locale),
+      worn: wornCount,
+      seen: seenCount,
+      said: formatNumber((100 * wornCount) / seenCount, 0, locale),
+    };
+    return (
+      <p key={taskId} className="working-strip-words">
+        {from === "rounds"
+          ? i18n.t(
+              "{task}: the shift states that it was worn {stated} % of the time; rounds saw it worn in {worn} of {seen} looks. What the shift states counts.",
+              values,
+            )
+          : from === "own-reports"
+            ? i18n.t(
+                "{task}: the shift states that it was worn {stated} % of the time; the worker’s own report comes to {said} %, and nobody looked. What the shift states counts.",
+                values,
+              )
+            : i18n.t(
+                "{task}: the shift states that it was worn {stated} % of the time; rounds and own reports together come to {said} %. What the shift states counts.",
+                values,
+              )}
+      </p>
+    );
+  });
 }
 
 function ResultStrip({ result: { figures, wearingSeen } }: { result: ResultView }) {

@@ -84,11 +84,11 @@ function YearCounts({ figures }: { figures: SiteFiguresView }) {
             meaning: rule ?? i18n.t("people, on a day of the year"),
           };
         }),
-        ...gaps.map(({ kind, count }) => ({
+        ...gaps.map(({ kind, count, hasNoInterval }) => ({
           key: kind,
           label: gapWord(i18n, kind),
           count,
-          meaning: gapMeaning(i18n, kind),
+          meaning: gapMeaning(i18n, kind, hasNoInterval),
         })),
       ]}
     />
@@ -225,9 +225,9 @@ export function Component() {
               <YearCounts figures={figures} />
             </Section>
             <Section title={i18n.t("By crew, job, area and task")} id="people">
-              <FilterRow label={i18n.t("By")}>
+              <FilterRow label={i18n.t("Counted by")}>
                 <FilterSelect
-                  label={i18n.t("By")}
+                  label={i18n.t("Counted by")}
                   value={by}
                   choices={FIGURES_BY.map((one) => ({ value: one, label: byWord(i18n, one) }))}
                   onChange={(value) => choose("by", value)}

@@ -67,7 +67,9 @@ export function Component() {
         <PageHead
           title={i18n.t("Check the trail")}
           way={<TextLink to={paths.trail}>{i18n.t("Trail")}</TextLink>}
-          lead={<Verdict found={found} isRunning={isRunning} />}
+          lead={
+            found ? <Verdict found={found} isRunning={isRunning} /> : <WhatItDoes state={state} />
+          }
           actions={
             <Button
               kind="primary"
@@ -83,6 +85,10 @@ export function Component() {
           <Failed onRetry={() => void check()}>
             {i18n.t("The check broke off. What stands below was checked before that.")}
           </Failed>
+        )}
+        {found && <Faults found={found} zone={zone} />}
+        {state && (state.foreign.length > 0 || state.unwatched.length > 0) && (
+          <Foreign state={state} zone={zone} />
         )}
         <Section id="head" title={i18n.t("Head and tail")}>
           <dl className="trail-ends">
@@ -120,11 +126,7 @@ export function Component() {
             ))}
           </dl>
         </Section>
-        {found && <Faults found={found} zone={zone} />}
-        {state && (state.foreign.length > 0 || state.unwatched.length > 0) && (
-          <Foreign state={state} zone={zone} />
-        )}
-        {state && <Tables found={found} state={state} isRunning={isRunning} />}
+        {found && <Parts found={found} isRunning={isRunning} />}
       </PageBody>
       <Folio caution={i18n.t("The same from the command line: npm run verify:trail")} />
     </>
@@ -136,9 +138,22 @@ const faultCount = ({ seals, tables, state }: CheckedSoFar) =>
   [...tables.values()].reduce((sum, table) => sum + table.faultCount, 0) +
   state.unwatched.length;
 
-function Verdict({ found, isRunning }: { found: CheckedSoFar | null; isRunning: boolean }) {
+/** Before a check. */
+function WhatItDoes({ state }: { state: TrailState | undefined }) {
   const { i18n } = useLingui();
-  if (!found) return i18n.t("Not checked since you opened this page.");
+  const locale = useLocale();
+  if (!state) return <span className="loading-line" />;
+  return i18n.t(
+    "Not checked since you opened this page. The check computes {seals} seals anew and holds the rows of {tables} tables against the trail; that can take minutes, and changes nothing.",
+    {
+      seals: formatNumber(state.head?.number ?? 0, 0, locale),
+      tables: formatNumber(state.tables.length, 0, locale),
+    },
+  );
+}
+
+function Verdict({ found, isRunning }: { found: CheckedSoFar; isRunning: boolean }) {
+  const { i18n } = useLingui();
   const count = faultCount(found);
   return (
     <Status>
@@ -306,19 +321,13 @@ interface Part {
   name: ReactNode;
   count: number | null;
   word: ReactNode;
+  /** Null: not checked. */
+  faults: number | null;
 }
 
-function Tables({
-  found,
-  state,
-  isRunning,
-}: {
-  found: CheckedSoFar | null;
-  state: TrailState;
-  isRunning: boolean;
-}) {
+function usePartsOf(found: CheckedSoFar, isRunning: boolean): Part[] {
   const { i18n } = useLingui();
-  const locale = useLocale();
+  const { state, seals, tables } = found;
   const word = (faults: number | null, isNow: boolean) =>
     faults === null ? (
       <span className="not-assessed">
@@ -331,55 +340,98 @@ function Tables({
         {i18n.t("{count, plural, one {# is not} other {# are not}}", { count: faults })}
       </strong>
     );
-  const next = state.tables.find((table) => !found?.tables.has(table));
-  const seals = found?.seals;
-  const parts: Part[] = [
+  const next = state.tables.find((table) => !tables.has(table));
+  const ofSeals = seals.isDone ? seals.faults.reduce((sum, { count }) => sum + count, 0) : null;
+  return [
     {
       key: "",
       name: i18n.t("Seals of the chain"),
-      count: seals ? seals.checked : null,
+      count: seals.checked,
+      faults: ofSeals,
       word: (
         <>
-          {word(
-            seals?.isDone ? seals.faults.reduce((sum, { count }) => sum + count, 0) : null,
-            isRunning,
-          )}
-          {seals !== undefined &&
-            seals.erased > 0 &&
+          {word(ofSeals, isRunning)}
+          {seals.erased > 0 &&
             `; ${i18n.t("{count, plural, one {of # event the personal values are erased} other {of # events the personal values are erased}}", { count: seals.erased })}`}
         </>
       ),
     },
     ...state.tables.map((table): Part => {
-      const checked = found?.tables.get(table);
+      const checked = tables.get(table);
+      const faults = checked?.faultCount ?? null;
       return {
         key: table,
         name: <span className="mono trail-key">{table}</span>,
         count: checked?.rows ?? null,
-        word: word(
-          checked?.faultCount ?? null,
-          isRunning && Boolean(seals?.isDone) && table === next,
-        ),
+        faults,
+        word: word(faults, isRunning && seals.isDone && table === next),
       };
     }),
   ];
+}
+
+/** What is not in order first; the rest is folded, for there is nothing to be done about it. */
+function Parts({ found, isRunning }: { found: CheckedSoFar; isRunning: boolean }) {
+  const { i18n } = useLingui();
+  const parts = usePartsOf(found, isRunning);
+  const faulty = parts.filter(({ faults }) => faults !== null && faults > 0);
+  const inOrder = parts.filter(({ faults }) => faults === 0);
+  const open = parts.filter(({ faults }) => faults === null);
   return (
     <Section id="tables" title={i18n.t("Part by part")}>
-      <DataTable
-        caption={i18n.t("Part by part")}
-        columns={[
-          { id: "name", head: i18n.t("Table"), isRowHead: true, cell: ({ name }) => name },
-          {
-            id: "count",
-            head: i18n.t("Rows"),
-            kind: "figure",
-            cell: ({ count }) => (count === null ? "" : formatNumber(count, 0, locale)),
-          },
-          { id: "word", head: i18n.t("Checked"), cell: (part) => part.word },
-        ]}
-        rows={parts}
-        rowKey={({ key }) => key}
-      />
+      {faulty.length > 0 && (
+        <PartsTable caption={i18n.t("Parts that are not as the trail says")} parts={faulty} />
+      )}
+      {inOrder.length > 0 && (
+        <Folded
+          title={i18n.t(
+            "{count, plural, one {# part is as the trail says} other {# parts are as the trail says}}",
+            { count: inOrder.length },
+          )}
+          parts={inOrder}
+        />
+      )}
+      {open.length > 0 && (
+        <Folded
+          title={i18n.t(
+            "{count, plural, one {# part is not checked yet} other {# parts are not checked yet}}",
+            { count: open.length },
+          )}
+          parts={open}
+        />
+      )}
     </Section>
+  );
+}
+
+function Folded({ title, parts }: { title: string; parts: readonly Part[] }) {
+  const { i18n } = useLingui();
+  return (
+    <details className="trail-folded">
+      <summary>{title}</summary>
+      <PartsTable caption={i18n.t("Part by part")} parts={parts} />
+    </details>
+  );
+}
+
+function PartsTable({ caption, parts }: { caption: string; parts: readonly Part[] }) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  return (
+    <DataTable
+      caption={caption}
+      columns={[
+        { id: "name", head: i18n.t("Table"), isRowHead: true, cell: ({ name }) => name },
+        {
+          id: "count",
+          head: i18n.t("Rows"),
+          kind: "figure",
+          cell: ({ count }) => (count === null ? "" : formatNumber(count, 0, locale)),
+        },
+        { id: "word", head: i18n.t("Checked"), cell: (part) => part.word },
+      ]}
+      rows={parts}
+      rowKey={({ key }) => key}
+    />
   );
 }

@@ -34,7 +34,7 @@ export function Component() {
     },
     {
       id: "to",
-      head: i18n.t("To"),
+      head: i18n.t("Sent to"),
       cell: ({ name, email }) => (
         <>
           <bdi>{name}</bdi>

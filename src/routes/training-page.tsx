@@ -108,7 +108,7 @@ export function Component() {
             }
           />
         </Section>
-        <Section title={i18n.t("Held")} id="trainings-held">
+        <Section title={i18n.t("Training held")} id="trainings-held">
           <TrainingsTable
             {...tableOf(list)}
             rows={list.data?.pages.flatMap(({ rows }) => rows) ?? []}

@@ -32,7 +32,7 @@ import { Folio, MarginNote, PageBody, PageHead, Section } from "../components/pa
 import { ProtectorWord } from "../components/protector-word";
 import { SlipsLink } from "../components/slips-link";
 import { groundOf } from "../components/strip-of-day";
-import { AssignForm, assignedUse } from "../features/assignments/assign-form";
+import { AssignForm } from "../features/assignments/assign-form";
 import { AssignmentsTable } from "../features/assignments/assignments-table";
 import { FindingsTable } from "../features/findings/findings-table";
 import { findingQueries } from "../features/findings/queries";
@@ -48,6 +48,7 @@ import { workerQueries } from "../features/workers/queries";
 import { SignInSlip } from "../features/workers/sign-in-slip";
 import { employerWords } from "../features/workers/workers-table";
 import { apiAddress } from "../lib/api";
+import { assignedUse } from "../lib/assigned-use";
 import { useLocale } from "../lib/i18n";
 import { paths } from "../paths";
 import "../styles/findings.css";

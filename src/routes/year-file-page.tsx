@@ -91,7 +91,8 @@ function YearFile({
   const [search, setSearch] = useSearchParams();
   const today = localDateOf(new Date().toISOString(), site.timeZone);
   const asked = Number(search.get("year"));
-  const visited = visits.find(({ siteId }) => siteId === site.id)?.year;
+  const visitedYears = visits.filter(({ siteId }) => siteId === site.id).map((visit) => visit.year);
+  const [visited] = visitedYears;
   const year =
     Number.isInteger(asked) && asked > 1900 ? asked : (visited ?? Number(today.slice(0, 4)));
   const workers = WORKERS_AS.find((one) => one === search.get("workers")) ?? "number";
@@ -106,7 +107,9 @@ function YearFile({
   const Months = useIsPhone() ? MonthsList : MonthsTable;
   const [isAsking, setIsAsking] = useState(false);
   const [error, setError] = useState<unknown>(null);
-  const years = [...new Set([year, ...(gaps.data?.years ?? [])])].sort((a, b) => b - a);
+  const years = [...new Set([year, ...visitedYears, ...(gaps.data?.years ?? [])])].sort(
+    (a, b) => b - a,
+  );
 
   const choose = (name: string, value: string) => {
     setSaid("");
@@ -247,7 +250,9 @@ function YearFile({
             {i18n.t("Choose another year or another site.")}
           </Empty>
         ) : (
-          <Months year={year} months={gaps.data?.months} {...limits} today={today} />
+          !gaps.isError && (
+            <Months year={year} months={gaps.data?.months} {...limits} today={today} />
+          )
         )}
         <div className="year-columns">
           <ColumnsTable />

@@ -7,9 +7,11 @@ import { afterAll, describe, expect, test, vi } from "vitest";
 import { RecordEnds } from "../../server/exports/record-ends";
 import { YEAR_COLUMNS } from "../../server/exports/year-columns";
 import {
+  buildAssignment,
   buildDay,
   buildFitTest,
   buildInstrument,
+  buildProtector,
   buildSite,
   buildTask,
   buildUser,
@@ -453,7 +455,39 @@ describe("what is missing in a year", () => {
     );
     const silent = await buildSite();
     await buildDay(await buildWorker({ site: silent }), "2026-03-02");
-    expect((await gaps(silent)).counts["not-fitted"]).toBe(0);
+    expect((await gaps(silent)).counts["not-fitted"]).toBe(1);
+  });
+
+  test("where the site states no interval it says so, and counts who was never tested with what they wear", async () => {
+    const site = await buildSite();
+    const { organizationId } = site;
+    const [worn, other] = [
+      await buildProtector({ organizationId }),
+      await buildProtector({ organizationId }),
+    ];
+    const [never, long, elsewhere] = [
+      await buildWorker({ site }),
+      await buildWorker({ site }),
+      await buildWorker({ site }),
+    ];
+    for (const worker of [never, long, elsewhere]) {
+      await buildDay(worker, "2026-03-02");
+      await buildAssignment({ worker, inner: worn });
+    }
+    await buildFitTest({ worker: long, model: worn, testedOn: "2021-03-01" });
+    await buildFitTest({ worker: elsewhere, model: other, testedOn: "2026-02-01" });
+    const client = await auditorAt(site);
+    const of = async () =>
+      (await client.get(`/exports/gaps?siteId=${site.id}&year=2026`)).body.counts.find(
+        ({ kind }: { kind: string }) => kind === "not-fitted",
+      );
+    expect(await of()).toEqual({ kind: "not-fitted", count: 2, hasNoInterval: true });
+    const { names } = await gaps(site);
+    expect((await names("not-fitted")).map(({ id }: { id: string }) => id).sort()).toEqual(
+      [never.id, elsewhere.id].sort(),
+    );
+    await owner().query("UPDATE sites SET fit_every_months = 12 WHERE id = $1", [site.id]);
+    expect(await of()).toEqual({ kind: "not-fitted", count: 2 });
   });
 
   test("a letter of results is late until it reached its worker within the rule's days", async () => {

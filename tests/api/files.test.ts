@@ -42,8 +42,16 @@ describe("POST /files", () => {
     const script = await upload(officer, Buffer.from("<script>alert(1)</script>"), "photo.png");
     expect([script.status, script.body.issues]).toMatchObject([
       422,
-      [{ path: ["file"], code: "file-kind" }],
+      [
+        {
+          path: ["file"],
+          code: "file-not-as-named",
+          params: { name: "photo.png", found: "text/plain" },
+        },
+      ],
     ]);
+    const text = await upload(officer, Buffer.from("Offer of 3 March"), "offer.txt");
+    expect(text.body.issues).toMatchObject([{ path: ["file"], code: "file-kind" }]);
     expect((await officer.post("/files", {})).status).toBe(422);
     const events = await select("SELECT 1 FROM audit_events WHERE organization_id = $1", [
       site.organizationId,

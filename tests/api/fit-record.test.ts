@@ -158,6 +158,16 @@ describe("what is refused", () => {
     expect(await select("SELECT 1 FROM fit_tests WHERE site_id = $1", [site.id])).toEqual([]);
   });
 
+  test("each trial that no ear can have, at its ear and with its number", async () => {
+    const { client, worker, model } = await buildFit();
+    const facts = { leftDb: [70], rightDb: [20, 69], methodSdDb: 2 };
+    const answer = await client.post(`/workers/${worker.id}/fit-tests`, input(model.id, { facts }));
+    expect(answer.body.issues).toMatchObject([
+      { path: ["facts", "leftDb"], params: { ear: "left", trial: 1, foundDb: 70 } },
+      { path: ["facts", "rightDb"], params: { ear: "right", trial: 2, foundDb: 69 } },
+    ]);
+  });
+
   test("a size that the model does not come in; another organization's model", async () => {
     const { client, worker, model } = await buildFit();
     await owner().query(

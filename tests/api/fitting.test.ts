@@ -353,6 +353,35 @@ describe("the fitting desk", () => {
     expect(body.need.outsideDb).toBeCloseTo(95, 2);
     expect(body.need.needDb).toBeCloseTo(5, 2);
     expect(body.need.mostDb).toBeNull();
+    expect(body.need.isUpperBound).toBe(false);
+  });
+
+  test("of an average that left something out the most that it can have been asks", async () => {
+    const site = await buildSite({ governingRuleSet: "us-general-industry" });
+    const settings = { criterionLevelDb: 90, exchangeRateDb: 5, weighting: "A", response: "slow" };
+    const metric = { kind: "lavg", settings: { ...settings, thresholdDb: 90 } };
+    const task = await buildTask({ site, levelDb: 97, metric });
+    const job = await buildJob({ site, tasks: [{ taskId: task.id, durationMin: 480 }] });
+    const worker = await buildWorker({ site, jobId: job.id });
+    const { organizationId } = site;
+    const client = await signInAs(await buildUser({ organizationId, roles: ["officer"] }));
+    const { body } = await client.get(`/workers/${worker.id}/fitting`);
+    // 29 CFR 1910.95 App. A: as much again as a whole shift at its threshold of 90, 5 log2(2^(97/5) + 2^(90/5)).
+    expect(body.need).toMatchObject({ isUpperBound: true });
+    expect(body.need.outsideDb).toBeCloseTo(99.3, 1);
+    expect(body.need.needDb).toBeCloseTo(9.3, 1);
+  });
+
+  test("a noise too deep for a fit rated in pink noise says so, and which task it is", async () => {
+    const site = await buildSite({ governingRuleSet: "uk-2005" });
+    const octaveBandsDb = [108, 104, 98, 90, 84, 80, 74, 68];
+    const task = await buildTask({ site, levelDb: 95, octaveBandsDb });
+    const job = await buildJob({ site, tasks: [{ taskId: task.id, durationMin: 240 }] });
+    const worker = await buildWorker({ site, jobId: job.id });
+    const { organizationId } = site;
+    const client = await signInAs(await buildUser({ organizationId, roles: ["officer"] }));
+    const { body } = await client.get(`/workers/${worker.id}/fitting`);
+    expect(body.need).toMatchObject({ taskId: task.id, isTooDeepForOwnFit: true });
   });
 });
 
@@ -576,7 +605,12 @@ describe("a fit test", () => {
       body: { reason: "another worker’s ears" },
       revision: 2,
     });
-    expect(struck.body).toMatchObject({ isVoid: true, dueOn: null, can: { change: false } });
+    expect(struck.body).toMatchObject({
+      isVoid: true,
+      struckReason: "another worker’s ears",
+      dueOn: null,
+      can: { change: false },
+    });
     expect((await desk.client.put(path, correction(), struck.body.revision)).status).toBe(409);
   });
 
@@ -881,6 +915,41 @@ describe("an issue", () => {
       [reason],
     );
     expect([...kept, ...told]).toEqual([]);
+  });
+
+  test("on a fit of one ear alone, or one that failed, needs a reason too", async () => {
+    const desk = await openDesk();
+    const { worker, muff, plug, client } = desk;
+    const issueOn = async (trials: object, more: object = {}) => {
+      const body = fitBody(muff.id, { facts: { ...facts, ...trials } });
+      const fit = await client.post(`/workers/${worker.id}/fit-tests`, body);
+      const fitTestId = fit.body.id;
+      return issue(desk, issueOf(muff.id, [muff.id, plug.id], { fitTestId, ...more }));
+    };
+    const oneEar = await issueOn({ rightDb: [] });
+    expect(oneEar.body.issues).toMatchObject([{ path: ["reason"], code: "fit-not-assessed" }]);
+    const failed = await issueOn({ leftDb: [8] });
+    expect(failed.body.issues).toMatchObject([{ path: ["reason"], code: "fit-not-passed" }]);
+    expect((await issueOn({ rightDb: [] }, { reason: "right ear later" })).status).toBe(201);
+    expect((await issueOn({})).status).toBe(201);
+  });
+
+  test("says what it takes the place of, and the desk says so before", async () => {
+    const desk = await openDesk();
+    const { worker, muff, plug, client } = desk;
+    await client.post(`/workers/${worker.id}/assignments`, {
+      innerModelId: plug.id,
+      outerModelId: muff.id,
+      fromDate: daysFromToday(-10),
+    });
+    const { body } = await client.get(`/workers/${worker.id}/fitting`);
+    expect(body.assigned).toMatchObject([
+      { name: "Alder foam + Fenmuff", taskId: null, fromDate: daysFromToday(-10), toDate: null },
+    ]);
+    const first = await issue(desk, issueOf(muff.id, [muff.id, plug.id]));
+    expect(first.body.replacedName).toBe("Alder foam + Fenmuff");
+    const again = await issue(desk, issueOf(muff.id, [muff.id, plug.id]));
+    expect(again.body.replacedName).toBeNull();
   });
 
   test("a size that the model does not come in is refused", async () => {

@@ -367,7 +367,10 @@ describe("a finding that is handed over, and one that is overdue", () => {
     const escalate = () => inTransaction({ organizationId }, () => escalateOverdue(organizationId));
     const client = await signIn(site, "officer");
     await escalate();
-    expect((await client.get(`/findings/${late}`)).body.wentUp).toBeNull();
+    expect((await client.get(`/findings/${late}`)).body).toMatchObject({
+      wentUp: null,
+      goesUp: false,
+    });
 
     await client.send({
       method: "put",
@@ -378,7 +381,11 @@ describe("a finding that is handed over, and one that is overdue", () => {
     await escalate();
     await escalate();
     const view = await client.get(`/findings/${late}`);
-    expect(view.body).toMatchObject({ wentUp: { name: named.name }, revision: 1 });
+    expect(view.body).toMatchObject({
+      wentUp: { name: named.name },
+      goesUp: true,
+      revision: 1,
+    });
     expect(view.body.steps).toMatchObject([{ kind: "escalated", text: named.name }]);
     expect((await client.get(`/findings/${done}`)).body.wentUp).toBeNull();
 

@@ -8,6 +8,7 @@ import {
   buildAssignment,
   buildCrew,
   buildDay,
+  buildFinding,
   buildFitTest,
   buildJob,
   buildProtector,
@@ -166,7 +167,7 @@ describe("how long a task may last today", () => {
     const user = await buildUser({ organizationId, roles: ["worker"], workerId: worker.id });
     const client = await signInAs(user);
     const rows = async () => (await client.get(`/workers/${worker.id}/task-times`)).body.rows;
-    return { site, organizationId, loud, rows };
+    return { site, organizationId, worker, loud, rows };
   }
 
   test("is told where level, fit and wearing are known", async () => {
@@ -197,5 +198,13 @@ describe("how long a task may last today", () => {
       what: "Another riveter",
     });
     expect(await rows()).toEqual([]);
+  });
+
+  test("is not told while it is open where a bang came from", async () => {
+    const { site, worker, rows } = await layOut();
+    const findingId = await buildFinding({ site, workerId: worker.id, kind: "peak-or-ceiling" });
+    expect(await rows()).toEqual([]);
+    await select("UPDATE findings SET state = 'done' WHERE id = $1", [findingId]);
+    expect(await rows()).not.toEqual([]);
   });
 });

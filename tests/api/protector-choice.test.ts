@@ -4,12 +4,14 @@ import {
   buildAssignment,
   buildCrew,
   buildFitTest,
+  buildIssue,
   buildJob,
   buildProtector,
   buildSite,
   buildTask,
   buildUser,
   buildWorker,
+  daysFromToday,
   type Site,
   select,
   signInAs,
@@ -248,4 +250,32 @@ test("a slip has each protector with its worst task, fit and crew; another organ
   const foreign = await buildWorker();
   const refused = await client.get(`/issue-slips?workerIds=${worker.id},${foreign.id}`);
   expect(refused.status).toBe(404);
+});
+
+test("of two worn together a slip has both kinds, and what is due on either", async () => {
+  const site = await buildSite();
+  const { organizationId } = site;
+  const worker = await buildWorker({ site });
+  const plug = await buildProtector({ organizationId, kind: "foam-plug", data: { snrDb: 30 } });
+  const muff = await buildProtector({
+    organizationId,
+    kind: "earmuff",
+    data: { snrDb: 20, cushionsEveryDays: 180 },
+  });
+  const task = await buildTask({ site });
+  await buildAssignment({ worker, inner: plug, outer: muff, taskId: task.id });
+  const issuedOn = daysFromToday(-30);
+  await buildIssue({ worker, model: muff, issuedOn });
+  const client = await officerAt(site);
+  const { body } = await client.get(`/issue-slips?workerIds=${worker.id}`);
+  expect(body.rows[0].protectors).toMatchObject([
+    {
+      kind: "foam-plug",
+      outerKind: "earmuff",
+      cushionsDueOn: daysFromToday(150),
+      tipsDueOn: null,
+      issuedOn: null,
+    },
+    { kind: "earmuff", outerKind: null, cushionsDueOn: daysFromToday(150), issuedOn },
+  ]);
 });

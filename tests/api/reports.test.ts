@@ -16,6 +16,7 @@ import type { YearReportFigures } from "../../shared/schemas/report";
 import {
   buildAssignment,
   buildDay,
+  buildFinding,
   buildFitTest,
   buildJob,
   buildProtector,
@@ -456,6 +457,24 @@ describe("a year's report", () => {
     );
     const list = await officer.get(`/year-reports?siteId=${site.id}&year=2026`);
     expect(list.body.rows.map(({ number }: { number: number }) => number)).toEqual([2, 1]);
+  });
+
+  test("an overdue finding is what the screens call one, and what no rule judges at the ear is no zero", async () => {
+    const site = await buildSite({ timeZone: "UTC" });
+    const worker = await buildWorker({ site });
+    await buildDay(worker, "2026-05-04", {
+      governingRuleSet: "us-general-industry",
+      outsideDb: 92,
+    });
+    const year = { kind: "over-limit-outside", site, lastDate: "2026-05-04", dueOn: "2026-05-05" };
+    for (const state of ["new", "in-hand", "came-back", "done"] as const)
+      await buildFinding({ ...year, state, workerId: (await buildWorker({ site })).id });
+    const officer = await clientAt(site, "officer");
+    const { body } = await officer.post("/year-reports", { siteId: site.id, year: 2026 });
+    const text = plain(readBack(await takePdf(officer, `/year-reports/${body.id}/report.pdf`)));
+    expect(text).toContain("0 closed, 4 open, 3 of these overdue");
+    expect(text).toContain("No rule of the year judges the day at the ear");
+    expect(text).toMatch(/Over at the ear – of those in noise/);
   });
 
   test("one key issues one report, and a year without a day none", async () => {

@@ -466,6 +466,8 @@ describe("what a worker says anew of the same day and task", () => {
     expect(saved.status).toBe(201);
     await recomputeStaleDays(organizationId);
     const { body } = await worker.get(`/workers/${own.id}/days/${date}`);
+    // Nobody looked at the other task: that its share differs is the worker's own word.
+    expect(body.wearingSeen).toMatchObject([{ taskId: other.id, from: "own-reports" }]);
     const [first, second] = body.input.shifts[0].tasks;
     expect(first).toMatchObject({
       wornPct: (100 * 12) / 14,
@@ -611,13 +613,47 @@ test("somebody on loan from another site is seen in the crew that they work in, 
   );
   const date = daysFromToday(-1);
   const tally = await officer.get(`/crews/${crew.id}/wearing-tally?date=${date}`);
-  expect(tally.body.workers).toMatchObject([{ id: lent.id, taskIds: [task.id] }]);
+  expect(tally.body.workers).toMatchObject([
+    {
+      id: lent.id,
+      taskIds: [task.id],
+      protectors: [{ taskId: task.id, name: protector.name }],
+    },
+  ]);
   const round = await officer.post("/wearing-rounds", {
     siteId: here.id,
     seenOn: date,
     looks: [{ workerId: lent.id, taskId: task.id, wornCount: 1, seenCount: 1 }],
   });
   expect(round.status).toBe(201);
+});
+
+test("in a round each task has the protector that is assigned for it", async () => {
+  const site = await buildSite();
+  const { organizationId } = site;
+  const [press, saw] = [
+    await buildTask({ site, name: "Press", levelDb: 95 }),
+    await buildTask({ site, name: "Saw", levelDb: 95 }),
+  ];
+  const job = await buildJob({
+    site,
+    tasks: [press, saw].map(({ id: taskId }) => ({ taskId, durationMin: 240 })),
+  });
+  const worker = await buildWorker({ site, jobId: job.id });
+  const [band, plug, muff] = [
+    await buildProtector({ organizationId, name: "Sedge band" }),
+    await buildProtector({ organizationId, name: "Alder foam" }),
+    await buildProtector({ organizationId, name: "Fenmuff" }),
+  ];
+  await buildAssignment({ worker, inner: band });
+  await buildAssignment({ worker, inner: plug, outer: muff, taskId: saw.id });
+  const crew = await buildCrew({ site, members: [worker] });
+  const officer = await signInAs(await buildUser({ organizationId, roles: ["officer"] }));
+  const tally = await officer.get(`/crews/${crew.id}/wearing-tally?date=${daysFromToday(0)}`);
+  expect(tally.body.workers[0].protectors).toEqual([
+    { taskId: press.id, name: "Sedge band" },
+    { taskId: saw.id, name: "Alder foam + Fenmuff" },
+  ]);
 });
 
 test("a count enters the difference, and cushions are due by the model's interval from the last change", async () => {

@@ -120,7 +120,10 @@ describe("a visitor", () => {
       client.get(`/exports/gaps?siteId=${siteId}&year=${year}`);
     const mine = await gaps(site.id, 2025);
     expect([mine.status, mine.body.years]).toEqual([200, [2025]]);
-    expect((await gaps(site.id, 2026)).status).toBe(403);
+    expect(await gaps(site.id, 2026)).toMatchObject({
+      status: 403,
+      body: { code: "other-year", params: { years: "2025" } },
+    });
     expect((await gaps(other.id, 2025)).status).toBe(404);
     const file = (siteId: string, year: number) =>
       client.get(`/exports/year.csv?siteId=${siteId}&year=${year}&workers=number`);

@@ -223,6 +223,76 @@ describe("the year's ZIP", () => {
     expect(isSound(await checkYearFile(blobOf(await takeZip(site, "pseudonym"))))).toBe(true);
   });
 
+  test("letters of results stand in it with how they went, and who acknowledged them", async () => {
+    const { site, worker } = await layOutYear();
+    const { organizationId } = site;
+    const recorder = await buildUser({ organizationId, roles: ["officer"], name: "Ada Lund" });
+    const [found] = await select<{ id: string }>(
+      "SELECT current_result_id AS id FROM days WHERE worker_id = $1 AND date = '2026-03-02'",
+      [worker.id],
+    );
+    const letter = async (date: string, resultId: string | undefined, more: object = {}) => {
+      const id = await insert("result_letters", {
+        organizationId,
+        siteId: site.id,
+        workerId: worker.id,
+        ruleSet: "eu-2003-10-ec",
+        ruleSetVersion: 1,
+        dueOn: "2026-03-17",
+        language: "es",
+        subject: "Results",
+        bodyText: `${worker.name}, 91.3 dB`,
+        ...more,
+      });
+      await insert("result_letter_days", {
+        organizationId,
+        letterId: id,
+        workerId: worker.id,
+        date,
+        resultId,
+        criterion: "upper-action",
+        isOver: true,
+      });
+      return id;
+    };
+    const first = await letter("2026-03-02", found?.id);
+    const correction = await letter("2026-03-02", found?.id, { replacesId: first });
+    await letter("2025-03-02", await buildDay(worker, "2025-03-02"));
+    await insert("notice_acknowledgements", {
+      organizationId,
+      letterId: correction,
+      way: "paper",
+      signedOn: "2026-03-10",
+      recordedBy: recorder.id,
+    });
+    const bytes = await takeZip(site, "name");
+    const report = await checkYearFile(blobOf(bytes));
+    expect(isSound(report)).toBe(true);
+    expect(report.files).toContainEqual({ path: "letters.csv", rows: 2, state: "as-stated" });
+    const named: Record<string, string>[] = parse((await textsOf(bytes)).get("letters.csv") ?? "", {
+      columns: true,
+    });
+    const common = { language: "es", due_on: "2026-03-17", result_ids: found?.id };
+    expect(named).toMatchObject([
+      { ...common, letter_id: first, worker: worker.name, kind: "results", state: "replaced" },
+      {
+        ...common,
+        letter_id: correction,
+        kind: "correction",
+        correction_of: first,
+        state: "acknowledged",
+        delivery: "paper",
+        acknowledged_by: "paper",
+        signed_on: "2026-03-10",
+        recorded_by: "Ada Lund",
+      },
+    ]);
+    const madeUp = (await textsOf(await takeZip(site, "pseudonym"))).get("letters.csv") ?? "";
+    for (const secret of [worker.name, "ZX-4711", worker.id, "Ada Lund"])
+      expect(madeUp).not.toContain(secret);
+    expect(madeUp).toContain("W-");
+  });
+
   test("a file that breaks off is none", async () => {
     const { site } = await layOutYear();
     const bytes = await takeZip(site);

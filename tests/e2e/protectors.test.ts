@@ -139,7 +139,7 @@ test("assigned for the test cell, it leaves too much with its active part off", 
 });
 
 test("stereo recordings of two microphones at either ear pass the check of the active part", async () => {
-  for (const [place, ear] of ["Left", "Right"].entries()) {
+  for (const [place, ear] of ["Left ear", "Right ear"].entries()) {
     await open(`/workers/${workerId}/microphone-check`, "Two-microphone check");
     const form = page.getByRole("form", { name: "Two-microphone check" });
     await form.getByLabel("Protector", { exact: true }).selectOption({ label: MUFF });

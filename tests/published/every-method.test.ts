@@ -119,6 +119,26 @@ describe("which one governs", () => {
     expect(governing(buildProtection(ALL, { ownFitDb: 15 }))).toEqual([["own-fit", null, null]]);
     expect(governing(buildProtection({}))).toEqual([]);
   });
+
+  // ISO 4869-2 7: M is what comes off at LC − LA = 2 dB, less in a deeper noise; that an own fit is held against it too is common practice, no source.
+  test("in a noise past LC − LA of 2 an own fit that would replace only lowers", () => {
+    const at = (lcMinusLaDb: number, ownFitDb: number, data = {}) =>
+      everyMethod(
+        buildLevel(100, { lcMinusLaDb }),
+        buildProtection({ hDb: 30, mDb: 24, lDb: 16, ...data }, { ownFitDb }),
+        EU,
+      ).methods.find(({ governs }) => governs);
+    expect(at(2, 27)).toMatchObject({ method: "own-fit", atEarDb: 73 });
+    expect(at(2.1, 27)).toMatchObject({ method: "hml" });
+    // M − (M − L)/8 × (LC − LA − 2) = 24 − 6.
+    expect(at(8, 27)?.atEarDb).toBeCloseTo(82, 9);
+    expect(at(8, 12)).toMatchObject({ method: "own-fit", atEarDb: 88 });
+    // Without a label that says something of it, by how much less is not known.
+    expect(at(8, 27, { hDb: null })).toBeUndefined();
+    // Of a noise whose LC is not known nothing is held against it.
+    const unknown = everyMethod(buildLevel(100), buildProtection(ALL, { ownFitDb: 27 }), EU);
+    expect(unknown.methods.find(({ governs }) => governs)?.method).toBe("own-fit");
+  });
 });
 
 describe("what can't be said has its reason", () => {

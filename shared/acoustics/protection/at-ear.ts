@@ -31,7 +31,14 @@ import type {
 } from "../types";
 import { poweredShare } from "./active";
 import { en458Word } from "./adequacy";
-import { activeGainDb, methodResult, reductions } from "./attenuation";
+import {
+  activeGainDb,
+  isTooDeepForOwnFit,
+  lcMinusLaDb,
+  methodResult,
+  ownFitReplaces,
+  reductions,
+} from "./attenuation";
 import {
   type AudioLaw,
   audioLaw,
@@ -398,7 +405,7 @@ function seeTask(
   const rule = ruleSet.protection;
   const outsideDb = level.levelDb;
   const methods = reductions(level, protection, rule).map((one) => methodResult(outsideDb, one));
-  const governing = governingMethod(methods, rule);
+  const governing = governingMethod(methods, rule, lcMinusLaDb(level));
   const audioDb = protection.audioDb ?? null;
   if (governing.atEarDb === null) {
     return {
@@ -538,10 +545,14 @@ interface Governing {
   readonly reason: Reason | null;
 }
 
-/** The method that counts under a rule, and the level by it; own fit replaces the label, or can only lower it. */
+/**
+ * The method that counts under a rule in a noise of that LC − LA, and the level by it; own fit replaces the label, or can
+ * only lower it.
+ */
 export function governingMethod(
   methods: readonly MethodResult[],
   rule: RuleSetVersion["protection"],
+  lcLaDb: number | null,
 ): Governing {
   if (rule.methods.length === 0) return { method: null, atEarDb: null, reason: "not-stated" };
   let label: MethodResult | undefined;
@@ -556,7 +567,8 @@ export function governingMethod(
     reason ??= result.reason;
   }
   const own = methods.find(({ method, atEarDb }) => method === "own-fit" && atEarDb !== null);
-  if (own && rule.ownFit === "replaces") return own;
+  if (own && ownFitReplaces(rule, lcLaDb)) return own;
+  if (!label && own) reason ??= isTooDeepForOwnFit(rule, lcLaDb) ? "lc-la-out-of-range" : null;
   if (!label) return { method: null, atEarDb: null, reason: reason ?? "no-attenuation-data" };
   return own && own.atEarDb! > label.atEarDb! ? own : label;
 }

@@ -53,6 +53,20 @@ export function lcMinusLaDb(level: TaskLevel): number | null {
   return level.octaveBandsDb === null ? null : lcMinusLaOfSpectrumDb(level.octaveBandsDb);
 }
 
+/** LC − LA up to which M is what a protector takes off, dB; pink noise has 1.5. @source iso-4869-2 7 */
+const MOST_LC_MINUS_LA_OF_OWN_FIT_DB = 2;
+
+/**
+ * Whether an own fit stands in for the label in a noise. It is one number, rated in pink noise: in a deeper one less comes
+ * off, by how much it does not say, so that there it may only lower what the label gives. Common practice, no source.
+ */
+export const ownFitReplaces = (rule: ProtectionRule, lcLaDb: number | null): boolean =>
+  rule.ownFit === "replaces" && (lcLaDb === null || lcLaDb <= MOST_LC_MINUS_LA_OF_OWN_FIT_DB);
+
+/** The same, the other way about: it would, and the noise is too deep for it. */
+export const isTooDeepForOwnFit = (rule: ProtectionRule, lcLaDb: number | null): boolean =>
+  rule.ownFit === "replaces" && !ownFitReplaces(rule, lcLaDb);
+
 /** The outside level that a method takes its figure off: A-weighted, C-weighted, or band by band. */
 export type StartsFrom = "la" | "lc" | "bands";
 

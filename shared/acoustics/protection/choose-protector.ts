@@ -1,4 +1,10 @@
-import { type ExchangeLaw, levelFactor, weightOf } from "../exchange-law";
+import {
+  type ExchangeLaw,
+  levelFactor,
+  mostWeight,
+  servesExactly,
+  weightOf,
+} from "../exchange-law";
 import {
   type AttenuationMethod,
   OCTAVE_BANDS_HZ,
@@ -11,7 +17,7 @@ import {
   type TaskLevel,
 } from "../types";
 import { appendixBWord, en458Word } from "./adequacy";
-import { activeGainDb, DERATINGS, labelLess7Db, lcMinusLaDb } from "./attenuation";
+import { activeGainDb, DERATINGS, labelLess7Db, lcMinusLaDb, ownFitReplaces } from "./attenuation";
 import { combinationAttenuationDb } from "./bone-conduction";
 import { doubleAttenuationDb } from "./double";
 import { A_WEIGHTING_DB, assumedAttenuationDb, hmlOfBandsDb, snrOfBandsDb } from "./octave-band";
@@ -158,6 +164,8 @@ interface Noise {
   readonly level: TaskLevel;
   readonly levelDb: number;
   readonly durationMin: number;
+  /** By how much it may weigh more under the rule's law than its level does: an average under other settings is a bound. */
+  readonly mostShare: number;
   readonly isBare: boolean;
   /** A-weighted powers by band, NaN where not known; null without a spectrum, and where no method of the rule reads it. */
   readonly powers: Float64Array | null;
@@ -203,7 +211,7 @@ export class ProtectorChoice {
 
   for(wearer: Wearer): RankedProtector[] {
     const { prepared } = this;
-    const noises = wearer.noises.map((noise) => toNoise(noise, this.readsBands));
+    const noises = wearer.noises.map((noise) => toNoise(noise, this.readsBands, this.law));
     const targetDb = targetOf(this.rule, wearer.personalTargetDb);
     const scaleDb =
       this.besideScaleDb &&
@@ -281,7 +289,7 @@ export class ProtectorChoice {
     let hasLower = true;
     for (const noise of noises) {
       if (noise.isBare) {
-        const sum = noise.durationMin * weightOf(noise.levelDb, law);
+        const sum = noise.durationMin * noise.mostShare * weightOf(noise.levelDb, law);
         wornSum += sum;
         likeSum += sum;
         lowSum += sum;
@@ -308,10 +316,11 @@ export class ProtectorChoice {
           }
         }
         // A weight is a power of two: what is the same, or won't be read, is not computed again.
-        const sum = noise.durationMin * weightOf(wornDb, law);
+        const most = noise.durationMin * noise.mostShare;
+        const sum = most * weightOf(wornDb, law);
         wornSum += sum;
-        likeSum += likeDb === wornDb ? sum : noise.durationMin * weightOf(likeDb, law);
-        if (hasLower) lowSum += noise.durationMin * weightOf(lowDb, law);
+        likeSum += likeDb === wornDb ? sum : most * weightOf(likeDb, law);
+        if (hasLower) lowSum += most * weightOf(lowDb, law);
         continue;
       }
       const gainDb = isCredited
@@ -335,6 +344,8 @@ export class ProtectorChoice {
         decidingIn = noise;
       }
     }
+    // An average under settings that bound nothing says nothing of the shift.
+    if (isByShift && !Number.isFinite(wornSum)) return null;
     const twaOf = (sum: number) => levelFactor(law) * Math.log10(sum / law.referenceMin);
     const twaDb = isByShift ? twaOf(wornSum) : null;
     return {
@@ -616,14 +627,18 @@ function factorsOf(attenuationDb: OctaveBandValues): Float64Array {
 function toNoise(
   { name, level, durationMin, isBare = false }: Wearer["noises"][number],
   readsBands: boolean,
+  law: ExchangeLaw,
 ): Noise {
-  const { octaveBandsDb, levelDb, lcMinusLaDb: statedLcLaDb } = level;
+  const { octaveBandsDb, levelDb, metric, lcMinusLaDb: statedLcLaDb } = level;
   const powers = readsBands ? octaveBandsDb && aWeightedPowers(octaveBandsDb) : null;
   return {
     name,
     level,
     levelDb,
     durationMin,
+    mostShare: servesExactly(metric, law)
+      ? 1
+      : mostWeight(metric, levelDb, law) / weightOf(levelDb, law),
     isBare,
     powers,
     lcLaDb: lcMinusLaDb(level),
@@ -657,7 +672,7 @@ function reductionDb(
   const fitDb = fit?.parDb ?? null;
   const likeFitDb = fit?.atRuleShareDb ?? fitDb;
   const lowFitDb = fit?.atLowerShareDb ?? fitDb;
-  if (fitDb !== null && rule.ownFit === "replaces")
+  if (fitDb !== null && ownFitReplaces(rule, noise.lcLaDb))
     return { reductionDb: fitDb, likeReductionDb: likeFitDb!, lowReductionDb: lowFitDb };
   for (const method of rule.methods) {
     const found = byMethodDb(prepared, noise, method, fit);

@@ -1,6 +1,7 @@
 import type { AttenuationMethod, Protection, Reason, RuleSetVersion, TaskLevel } from "../types";
 import { governingMethod } from "./at-ear";
 import {
+  lcMinusLaDb,
   methodResult,
   type Reduction,
   reductions,
@@ -76,6 +77,7 @@ export function everyMethod(level: TaskLevel, protection: Protection, rule: Rule
   const governing = governingMethod(
     [...byRule.values()].map((one) => methodResult(level.levelDb, one)),
     rule,
+    lcMinusLaDb(level),
   );
   const governs = (method: AttenuationMethod, isOfRule: boolean) =>
     isOfRule && governing.method === method && governing.atEarDb !== null;

@@ -37,17 +37,17 @@ export type FitOutcome =
   | { readonly rating: FitRating; readonly refusal: null }
   | { readonly rating: null; readonly refusal: FitRefusal };
 
-export type FitRefusal =
-  | { readonly code: "no-trial" }
-  | {
-      readonly code: "above-bone-conduction";
-      readonly ear: "left" | "right";
-      /** Which trial of that ear, from 1. */
-      readonly trial: number;
-      /** What it is said to have taken off, and what an ear can have, dB. */
-      readonly foundDb: number;
-      readonly limitDb: number;
-    };
+export type FitRefusal = { readonly code: "no-trial" } | ImpossibleTrial;
+
+export interface ImpossibleTrial {
+  readonly code: "above-bone-conduction";
+  readonly ear: "left" | "right";
+  /** Which trial of that ear, from 1. */
+  readonly trial: number;
+  /** What it is said to have taken off, and what an ear can have, dB. */
+  readonly foundDb: number;
+  readonly limitDb: number;
+}
 
 export interface FitTrials {
   /** Attenuation by trial, each after a donning of its own, dB. */
@@ -74,8 +74,7 @@ export function fitRating(trials: FitTrials): FitOutcome {
   const right = earRating(trials.rightDb, trials.methodSdDb, z);
   const ears = [left, right].filter((ear) => ear !== null);
   if (ears.length === 0) return { rating: null, refusal: { code: "no-trial" } };
-  const refusal =
-    impossibleTrial("left", trials.leftDb) ?? impossibleTrial("right", trials.rightDb);
+  const [refusal] = impossibleTrials(trials);
   if (refusal) return { rating: null, refusal };
   const isLeftWeaker = right === null || (left !== null && left.parDb <= right.parDb);
   const parDb = Math.min(...ears.map((ear) => ear.parDb));
@@ -123,12 +122,19 @@ function pairPasses(parDb: number, needDb: number | null, isOneEar: boolean): bo
   return isOneEar && passes ? null : passes;
 }
 
-/** The first trial of an ear that nobody’s skull allows; null: none. */
-function impossibleTrial(ear: "left" | "right", trialsDb: readonly number[]): FitRefusal | null {
+/** Every trial that nobody’s skull allows, the left ear’s first. What is not a number takes its place and is passed over. */
+export function impossibleTrials(trials: {
+  readonly leftDb: readonly unknown[];
+  readonly rightDb: readonly unknown[];
+}): ImpossibleTrial[] {
   const limitDb = boneConductionLimitDb();
-  const at = trialsDb.findIndex((db) => db > limitDb);
-  if (at < 0) return null;
-  return { code: "above-bone-conduction", ear, trial: at + 1, foundDb: trialsDb[at]!, limitDb };
+  const ofEar = (ear: "left" | "right", trialsDb: readonly unknown[]) =>
+    trialsDb.flatMap((foundDb, at) =>
+      typeof foundDb === "number" && foundDb > limitDb
+        ? [{ code: "above-bone-conduction" as const, ear, trial: at + 1, foundDb, limitDb }]
+        : [],
+    );
+  return [...ofEar("left", trials.leftDb), ...ofEar("right", trials.rightDb)];
 }
 
 function earRating(trialsDb: readonly number[], methodSdDb: number, z: number): EarRating | null {

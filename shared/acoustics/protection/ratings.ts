@@ -6,13 +6,7 @@ import type {
   UsLabelAttenuation,
 } from "../types";
 import { US_LABEL_HZ } from "../types";
-import {
-  A_WEIGHTING_DB,
-  assumedAttenuationDb,
-  C_WEIGHTING_DB,
-  hmlOfBandsDb,
-  snrOfBandsDb,
-} from "./octave-band";
+import { A_WEIGHTING_DB, assumedAttenuationDb, hmlOfBandsDb, snrOfBandsDb } from "./octave-band";
 
 /** H, M, L and SNR of a label, dB, before they are rounded to it. */
 export interface EuropeanRatings {
@@ -76,10 +70,15 @@ export function sampleDeviation(values: readonly number[]): number {
 /** What the US label takes for differences between spectra, dB. @source epa-40-cfr-211 211.207, step 9 */
 const SPECTRAL_UNCERTAINTY_DB = 3;
 const PINK_BAND_DB = 100;
+/**
+ * Pink noise of 100 dB a band, C-weighted: a constant of the regulation, printed with one decimal and used so in step 9,
+ * though the bands add up to 107.95. @source epa-40-cfr-211 211.207, figure 2, step 3
+ */
+const OUTSIDE_C_DB = 107.9;
 
 /**
  * The US single number from its own test frequencies, dB, before it is rounded (a half to the next lower whole
- * number): pink noise from 125 Hz, C-weighted, less what is left of it A-weighted behind mean − 2 deviations, less 3.
+ * number): pink noise from 125 Hz, C-weighted (step 3, a constant), less what is left of it A-weighted behind mean − 2 deviations, less 3.
  * 3150 and 4000 Hz stand for one octave as their mean, and so do 6300 and 8000 Hz; octave bands alone can't give it.
  *
  * @throws RangeError unless there is one value for each test frequency.
@@ -90,15 +89,13 @@ export function usRatingOfLabelDb({ meanDb, sdDb }: UsLabelAttenuation): number 
     throw new RangeError("The US label needs one value for each of its test frequencies");
   const means = asOctaves(meanDb);
   const deviations = asOctaves(sdDb);
-  let outside = 0;
   let atEar = 0;
   for (const [index, meanOfBandDb] of means.entries()) {
     const band = index + 1; // There is no 63 Hz band in it.
     const lossDb = meanOfBandDb - 2 * deviations[index]!;
-    outside += 10 ** ((PINK_BAND_DB + C_WEIGHTING_DB[band]!) / 10);
     atEar += 10 ** ((PINK_BAND_DB + A_WEIGHTING_DB[band]! - lossDb) / 10);
   }
-  return 10 * Math.log10(outside / atEar) - SPECTRAL_UNCERTAINTY_DB;
+  return OUTSIDE_C_DB - 10 * Math.log10(atEar) - SPECTRAL_UNCERTAINTY_DB;
 }
 
 function asOctaves(atLabelHz: readonly number[]): number[] {

@@ -17,6 +17,7 @@ import {
 } from "../../components/form";
 import { FormProblem } from "../../components/form-problem";
 import { ApiError, newChangeKey } from "../../lib/api";
+import { EVERYWHERE } from "../../lib/assigned-use";
 import { problemText } from "../../lib/problem-text";
 import { references } from "../../lib/references";
 import { useAssign } from "./queries";
@@ -56,22 +57,12 @@ const AssignFields = z
       });
   });
 
-const EVERYWHERE = "everywhere";
-
 export interface AssignStart {
   /** "everywhere", "task <id>", "area <id>" */
   readonly use?: string;
   readonly innerModelId?: string;
   readonly outerModelId?: string;
 }
-
-export const assignedUse = ({
-  taskId,
-  areaId,
-}: {
-  taskId: string | null;
-  areaId: string | null;
-}): string => (taskId ? `task ${taskId}` : areaId ? `area ${areaId}` : EVERYWHERE);
 
 /** One protector, or a plug under a muff, for a use from a date. */
 export function AssignForm({

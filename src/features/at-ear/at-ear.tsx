@@ -2,6 +2,7 @@ import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { useEffect } from "react";
 import { useLocation, useSearchParams } from "react-router-dom";
+import { isTooDeepForOwnFit } from "../../../shared/acoustics/protection/attenuation";
 import type { Reason } from "../../../shared/acoustics/types";
 import { asReason, reasonText } from "../../../shared/findings/reasons";
 import { formatLevel, formatLevelWithUnit } from "../../../shared/format/level";
@@ -200,6 +201,10 @@ function Lead({ view, onLeaveWorker }: { view: AtEarView; onLeaveWorker: () => v
                   fit: formatLevel(worker.ownFitDb, locale),
                   less7: formatLevel(worker.labelLess7Db, locale),
                 })}{" "}
+          {worker.ownFitDb !== null &&
+            ruleSet &&
+            isTooDeepForOwnFit(ruleSet.protection, level?.lcMinusLaDb ?? null) &&
+            i18n.t("In so deep a noise it can only lower the label.")}{" "}
           <TextButton onClick={onLeaveWorker}>{i18n.t("Without the worker")}</TextButton>
         </>
       )}

@@ -72,7 +72,7 @@ export function SharesTable({
       stacksOnPhone
       groupOf={(share) =>
         share.state === "over"
-          ? { key: "over", label: i18n.t("Over") }
+          ? { key: "over", label: i18n.t("Ended") }
           : { key: "current", label: i18n.t("May come in") }
       }
       empty={<Empty title={i18n.t("Nobody of an employer is let in.")} />}

@@ -1,6 +1,7 @@
 import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { type ReactNode, useMemo } from "react";
+import { isOverdue } from "../../../shared/findings/overdue";
 import { findingStateWord, findingWord } from "../../../shared/findings/words";
 import { formatShortDate } from "../../../shared/format/date";
 import { formatNumber } from "../../../shared/format/number";
@@ -32,9 +33,6 @@ const overBy = ({ figures }: FindingRow): number =>
 
 /** After every date that is one. */
 const NEVER = "9999-12-31";
-
-const isOverdue = ({ dueOn, state }: FindingRow, today: string): boolean =>
-  dueOn !== null && dueOn < today && state !== "done" && state !== "closed";
 
 /** A group's days are counted worker by worker, and say so. */
 function daysSince(i18n: I18n, locale: Locale, finding: FindingRow): string {

@@ -118,6 +118,10 @@ function AttachForm({ findingId, onDone }: { findingId: string; onDone: () => vo
         label={i18n.t("File, PDF or photograph")}
         accept="application/pdf,image/*"
         atMost={1}
+        isOptional={false}
+        fault={
+          fileError?.type === "invalid_format" ? i18n.t("Choose a file first.") : fileError?.message
+        }
         files={sent}
         onFiles={(files) => {
           const [file] = files;
@@ -127,11 +131,6 @@ function AttachForm({ findingId, onDone }: { findingId: string; onDone: () => vo
             form.setValue("title", file.name.replace(/\.[a-z\d]+$/i, ""), { shouldDirty: true });
         }}
       />
-      {fileError && (
-        <p className="field-error" role="alert">
-          {fileError.type === "invalid_format" ? i18n.t("Choose a file first.") : fileError.message}
-        </p>
-      )}
       <TextField form={form} name="title" label={i18n.t("Title")} />
       <FormProblem error={attach.error} />
       <FormActions>

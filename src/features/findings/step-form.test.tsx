@@ -44,6 +44,7 @@ const view = (overrides: Partial<FindingView> = {}): FindingView =>
     evidence: [],
     told: [],
     untold: null,
+    goesUp: true,
     ...overrides,
   });
 

@@ -2,7 +2,7 @@ import { useLingui } from "@lingui/react";
 import { formatDuration } from "../../../shared/format/duration";
 import { formatLevel, formatLevelChange } from "../../../shared/format/level";
 import { withinSentence } from "../../../shared/format/words";
-import type { Candidate } from "../../../shared/schemas/fit";
+import type { Candidate, RefusalView } from "../../../shared/schemas/fit";
 import { exclusionWord, ownFitWord } from "../../../shared/words/register-words";
 import { Button } from "../../components/button";
 import { type DataColumn, DataTable } from "../../components/data-table";
@@ -10,7 +10,7 @@ import { Empty } from "../../components/empty";
 import { TextButton } from "../../components/link";
 import { ProtectorWord, protectorWordText } from "../../components/protector-word";
 import { useLocale } from "../../lib/i18n";
-import { type ActiveCredit, decidedWord, judgedByWord } from "./fit-words";
+import { type ActiveCredit, decidedWord, judgedByWord, refusedWord } from "./fit-words";
 
 /** A device, or two of them, among candidates. */
 export const candidateKey = ({
@@ -41,6 +41,29 @@ function MarginNote({ candidates }: { candidates: readonly Candidate[] }) {
 const doesSuit = ({ word, wornDb }: Candidate): boolean =>
   wornDb !== null && word !== "too-little" && word !== "too-much";
 
+/** What the worker refused or can't wear of it, as was last said of each: it can be chosen all the same. */
+function Refused({
+  row: { modelId, outerModelId },
+  refusals,
+}: {
+  row: Candidate;
+  refusals: readonly RefusalView[];
+}) {
+  const { i18n } = useLingui();
+  const locale = useLocale();
+  return [modelId, outerModelId].map((id) => {
+    const latest = refusals.find((one) => one.modelId !== null && one.modelId === id);
+    if (!latest || latest.kind === "not-worn") return null;
+    return (
+      <span key={id} className="is-fault">
+        {[outerModelId !== null && latest.modelName, refusedWord(i18n, latest, locale)]
+          .filter(Boolean)
+          .join(": ")}
+      </span>
+    );
+  });
+}
+
 /** The register in the order in which it suits a noise, each with the comparison that decided. */
 export function CandidatesTable({
   candidates,
@@ -51,6 +74,7 @@ export function CandidatesTable({
   pickLabel,
   onPick,
   hasOwnFit = true,
+  refusals = [],
   activeCredit,
 }: {
   candidates: readonly Candidate[];
@@ -65,6 +89,8 @@ export function CandidatesTable({
   pickLabel?: (name: string) => string;
   onPick?: (candidate: Candidate) => void;
   hasOwnFit?: boolean;
+  /** Of the one worker who stands there, the latest first. */
+  refusals?: readonly RefusalView[];
   activeCredit: ActiveCredit;
 }) {
   const { i18n } = useLingui();
@@ -91,6 +117,7 @@ export function CandidatesTable({
                   .filter(Boolean)
                   .join(", ")}
           </span>
+          <Refused row={row} refusals={refusals} />
         </span>
       ),
     },

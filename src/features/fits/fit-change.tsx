@@ -15,14 +15,14 @@ import {
 } from "../../components/form";
 import { FormProblem } from "../../components/form-problem";
 import { useChangeKey } from "../../lib/change-key";
-import { FitFields, factsOf, numbersIn } from "./fit-fields";
+import { FitFields, factsOf, numbersIn, possibleTrials } from "./fit-fields";
 import { showFitIssuesOn } from "./fit-issues";
 import { FitRatingLine } from "./fit-rating-line";
 import { fitMethodWord } from "./fit-words";
 import { useCorrectFitTest, useVoidFitTest } from "./queries";
 import { TrialCells } from "./trial-cells";
 
-const CorrectionFields = FitFields.extend({ reason: Reason });
+const CorrectionFields = FitFields.extend({ reason: Reason }).check(possibleTrials);
 
 /** What was misread or mistyped. Need and confidence stay those of the day of the test. */
 export function CorrectFit({ test, onDone }: { test: FitTestView; onDone: () => void }) {
@@ -72,12 +72,14 @@ export function CorrectFit({ test, onDone }: { test: FitTestView; onDone: () => 
       <TrialCells
         form={form}
         name="leftDb"
+        ear="left"
         label={i18n.t("Left ear")}
         onLeave={() => form.setFocus("rightDb")}
       />
       <TrialCells
         form={form}
         name="rightDb"
+        ear="right"
         label={i18n.t("Right ear")}
         onLeave={() => form.setFocus("note")}
       />

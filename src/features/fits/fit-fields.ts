@@ -1,4 +1,5 @@
 import { z } from "zod";
+import { impossibleTrials } from "../../../shared/acoustics/protection/fit-rating";
 import { FIT_METHODS, type FitFacts, FitMethod } from "../../../shared/schemas/fit";
 import type { Typed } from "../../components/number-input";
 import { MOST_TRIALS } from "./trial-cells";
@@ -26,6 +27,20 @@ export const FitFields = z.object({
   rightDb: Trials,
   note: z.string().trim().max(10_000),
 });
+
+/** What no ear can have is said at its ear before it is sent. */
+export function possibleTrials(context: {
+  value: Pick<FitFacts, "leftDb" | "rightDb">;
+  issues: z.core.$ZodRawIssue[];
+}): void {
+  for (const { code, ...params } of impossibleTrials(context.value))
+    context.issues.push({
+      code: "custom",
+      input: params.foundDb,
+      path: [params.ear === "left" ? "leftDb" : "rightDb"],
+      params: { code, ...params },
+    });
+}
 
 /** Microphones at the cup have a page of their own. */
 export const DESK_METHODS = FIT_METHODS.filter((method) => method !== "two-microphones");

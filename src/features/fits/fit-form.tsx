@@ -21,7 +21,7 @@ import { protectorWordText } from "../../components/protector-word";
 import { useChangeKey } from "../../lib/change-key";
 import { useLocale } from "../../lib/i18n";
 import { useOneAtATime } from "../../lib/one-at-a-time";
-import { DESK_METHODS, FitFields, factsOf, numbersIn } from "./fit-fields";
+import { DESK_METHODS, FitFields, factsOf, numbersIn, possibleTrials } from "./fit-fields";
 import { showFitIssuesOn } from "./fit-issues";
 import { FitRatingLine } from "./fit-rating-line";
 import { fitMethodWord, judgedDb } from "./fit-words";
@@ -30,6 +30,7 @@ import { useRecordFitTest } from "./queries";
 import { TrialCells } from "./trial-cells";
 
 const DeskFields = FitFields.extend({ modelId: z.uuid() }).check((context) => {
+  possibleTrials(context);
   const { leftDb, rightDb } = context.value;
   if (leftDb.length + rightDb.length === 0)
     context.issues.push({
@@ -200,12 +201,14 @@ export function FitForm({
       <TrialCells
         form={form}
         name="leftDb"
+        ear="left"
         label={i18n.t("Left ear")}
         onLeave={() => form.setFocus("rightDb")}
       />
       <TrialCells
         form={form}
         name="rightDb"
+        ear="right"
         label={i18n.t("Right ear")}
         note={i18n.t("Each trial with the device put on anew. Enter goes on; twice records.")}
         onLeave={() => void submit()}

@@ -1,7 +1,6 @@
 import { useLingui } from "@lingui/react";
 import { fitRating, hasToPass } from "../../../shared/acoustics/protection/fit-rating";
 import { formatLevel } from "../../../shared/format/level";
-import { issueText } from "../../../shared/problems/issue-text";
 import { passWord } from "../../../shared/words/register-words";
 import { Status } from "../../components/status";
 import { useLocale } from "../../lib/i18n";
@@ -28,14 +27,9 @@ export function FitRatingLine({
   const locale = useLocale();
   const uprightDb = hasToPass(needDb) ? needDb : null;
   const { rating, refusal } = fitRating({ leftDb, rightDb, methodSdDb, confidencePct, needDb });
-  if (refusal?.code === "above-bone-conduction") {
-    const { code, ...params } = refusal;
-    return (
-      <p className="field-error" role="alert">
-        {issueText(i18n, { code, params })}
-      </p>
-    );
-  }
+  // Which trial that is stands at its ear.
+  if (refusal?.code === "above-bone-conduction")
+    return <p className="not-assessed">{i18n.t("Not rated while a trial can’t be right.")}</p>;
   if (!rating)
     return (
       <div className="fit-rating">

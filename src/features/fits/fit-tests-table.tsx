@@ -3,6 +3,7 @@ import { type ReactNode, useState } from "react";
 import { hasToPass } from "../../../shared/acoustics/protection/fit-rating";
 import { formatShortDate } from "../../../shared/format/date";
 import { formatLevel } from "../../../shared/format/level";
+import { isolate } from "../../../shared/i18n/isolate";
 import type { FitTestView } from "../../../shared/schemas/fit";
 import { oneEarWord } from "../../../shared/words/register-words";
 import { type DataColumn, DataTable, type DataTableProps } from "../../components/data-table";
@@ -134,6 +135,14 @@ export function FitTestsTable({
               .filter(Boolean)
               .join(", ")}
           </span>
+          {test.struckReason !== null && (
+            <span className="beneath">
+              {[test.struckReason, test.authorName]
+                .filter((part) => part !== null)
+                .map(isolate)
+                .join(", ")}
+            </span>
+          )}
         </span>
       ),
     },

@@ -1,6 +1,8 @@
 import type { I18n } from "@lingui/core";
 import { hasToPass } from "../../../shared/acoustics/protection/fit-rating";
+import { formatShortDate } from "../../../shared/format/date";
 import { startsSentence } from "../../../shared/format/words";
+import type { Locale } from "../../../shared/i18n/index";
 import type {
   Candidate,
   FitMethod,
@@ -79,6 +81,18 @@ export function refusalWord(i18n: I18n, kind: RefusalInput["kind"]): string {
       return i18n.t("Cannot wear it");
   }
 }
+
+/** Of a device beside its name: that this worker would not have it, or cannot. */
+export const refusedWord = (
+  i18n: I18n,
+  { kind, happenedOn }: Pick<RefusalInput, "kind" | "happenedOn">,
+  locale: Locale,
+): string =>
+  kind === "refused"
+    ? i18n.t("this worker refused it on {date}", { date: formatShortDate(happenedOn, locale) })
+    : i18n.t("this worker cannot wear it, said on {date}", {
+        date: formatShortDate(happenedOn, locale),
+      });
 
 /** Which figure of the label stands for what most people get. */
 export function labelWord(i18n: I18n, method: string | null): string {

@@ -3,11 +3,12 @@ import { useQuery } from "@tanstack/react-query";
 import { useMemo, useState } from "react";
 import { useController } from "react-hook-form";
 import { z } from "zod";
+import { formatShortDate } from "../../../shared/format/date";
 import { Reason } from "../../../shared/schemas/common";
 import {
   type FitTestView,
   type FittingDesk,
-  type IssueView,
+  type IssueSaved,
   reasonAskedFor,
 } from "../../../shared/schemas/fit";
 import { Button } from "../../components/button";
@@ -24,7 +25,9 @@ import {
 } from "../../components/form";
 import { FormProblem } from "../../components/form-problem";
 import { ApiError } from "../../lib/api";
+import { assignedUse, EVERYWHERE } from "../../lib/assigned-use";
 import { useChangeKey } from "../../lib/change-key";
+import { useLocale } from "../../lib/i18n";
 import { useOneAtATime } from "../../lib/one-at-a-time";
 import { references } from "../../lib/references";
 import { showFitIssuesOn } from "./fit-issues";
@@ -44,10 +47,10 @@ const IssueFields = z.object({
 });
 
 /** What is laid out decides whether a reason is asked for: said before it is sent. */
-const fieldsAt = ({ candidates }: FittingDesk, deviceId: string) =>
+const fieldsAt = ({ candidates }: FittingDesk, device: ToIssue) =>
   IssueFields.check((context) => {
     const { offeredModelIds, reason } = context.value;
-    const asked = askedFor(candidates, deviceId, offeredModelIds);
+    const asked = askedFor(candidates, device, offeredModelIds);
     if (reason === null && asked !== null)
       context.issues.push({
         code: "custom",
@@ -59,15 +62,28 @@ const fieldsAt = ({ candidates }: FittingDesk, deviceId: string) =>
 
 const askedFor = (
   candidates: FittingDesk["candidates"],
-  deviceId: string,
+  device: ToIssue,
   offeredModelIds: readonly string[],
 ) =>
   reasonAskedFor(
     candidates.flatMap(({ modelId, kind }) => (offeredModelIds.includes(modelId) ? [kind] : [])),
-    candidates.find(({ modelId }) => modelId === deviceId)?.stock ?? null,
+    candidates.find(({ modelId }) => modelId === device.modelId)?.stock ?? null,
+    device.fit,
   );
 
-const EVERYWHERE = "everywhere";
+/** What was assigned for the same use on that day, and is not this device already: it ends with the issue. */
+const replacedBy = (
+  { assigned }: FittingDesk,
+  { modelId, size }: ToIssue,
+  { use, issuedOn }: { use: string; issuedOn: string },
+) =>
+  assigned.find(
+    (one) =>
+      assignedUse(one) === use &&
+      one.fromDate <= issuedOn &&
+      (one.toDate === null || one.toDate >= issuedOn) &&
+      !(one.innerModelId === modelId && one.outerModelId === null && one.size === size),
+  );
 
 /** What goes out: a device, and the fit that it goes out on where one was tested. */
 export interface ToIssue {
@@ -87,10 +103,11 @@ export function IssueForm({
   desk: FittingDesk;
   device: ToIssue;
   today: string;
-  onIssued: (issue: IssueView, stockLeft: number | null) => void;
+  onIssued: (issue: IssueSaved, stockLeft: number | null) => void;
   onLeave: () => void;
 }) {
   const { i18n } = useLingui();
+  const locale = useLocale();
   const issue = useIssue(desk.worker.id);
   const changeKey = useChangeKey();
   const { begin, end } = useOneAtATime();
@@ -101,7 +118,7 @@ export function IssueForm({
   const tried = desk.tests
     .filter(({ isVoid, testedOn }) => !isVoid && testedOn === today)
     .map(({ modelId }) => modelId);
-  const fields = useMemo(() => fieldsAt(desk, device.modelId), [desk, device.modelId]);
+  const fields = useMemo(() => fieldsAt(desk, device), [desk, device]);
   const form = useSchemaForm(fields, {
     mode: "onSubmit",
     keepAs: `issue ${device.modelId}`,
@@ -115,8 +132,9 @@ export function IssueForm({
     },
   });
   const offered = form.watch("offeredModelIds");
-  const asked = askedFor(desk.candidates, device.modelId, offered);
+  const asked = askedFor(desk.candidates, device, offered);
   const stock = candidate?.stock ?? null;
+  const replaced = replacedBy(desk, device, form.watch());
   // The server counts the stock by size; once a reason was asked for, the field stays for what is typed.
   const [askedByServer, setAskedByServer] = useState<string | null>(null);
   const hasAsked = askedByServer !== null || form.watch("reason") !== "";
@@ -172,7 +190,23 @@ export function IssueForm({
         );
       })}
     >
-      <SelectField form={form} name="use" label={i18n.t("Worn")} choices={uses} />
+      <SelectField
+        form={form}
+        name="use"
+        label={i18n.t("Worn")}
+        choices={uses}
+        note={
+          replaced &&
+          (replaced.fromDate < form.getValues("issuedOn")
+            ? i18n.t(
+                "Replaces {protector}, assigned for this since {date}: that ends the day before.",
+                { protector: replaced.name, date: formatShortDate(replaced.fromDate, locale) },
+              )
+            : i18n.t("Replaces {protector}, assigned for this on the same day.", {
+                protector: replaced.name,
+              }))
+        }
+      />
       <OfferedField form={form} desk={desk} deviceId={device.modelId} />
       <CheckField
         form={form}
@@ -193,13 +227,17 @@ export function IssueForm({
           label={i18n.t("All the same, because")}
           rows={2}
           note={
-            why === "one-kind-offered"
-              ? i18n.t("Only one kind is on offer. Only officers read this.")
-              : why === "none-in-stock"
-                ? i18n.t("None of {protector} is in stock. Only officers read this.", {
-                    protector: name,
-                  })
-                : i18n.t("Only officers read this.")
+            why === "fit-not-passed"
+              ? i18n.t("This fit did not pass. Only officers read this.")
+              : why === "fit-not-assessed"
+                ? i18n.t("This fit is not assessed for one ear. Only officers read this.")
+                : why === "one-kind-offered"
+                  ? i18n.t("Only one kind is on offer. Only officers read this.")
+                  : why === "none-in-stock"
+                    ? i18n.t("None of {protector} is in stock. Only officers read this.", {
+                        protector: name,
+                      })
+                    : i18n.t("Only officers read this.")
           }
         />
       )}

@@ -16,6 +16,7 @@ import {
   type IssueEnd,
   type IssueInput,
   IssuePage,
+  IssueSaved,
   IssueView,
   type RefusalInput,
   RefusalList,
@@ -131,7 +132,7 @@ export function useIssue(workerId: string) {
   const settled = useSettled();
   return useMutation({
     mutationFn: ({ body, key }: Keyed<IssueInput>) =>
-      api.post(`/workers/${workerId}/issues`, { body, schema: IssueView, idempotencyKey: key }),
+      api.post(`/workers/${workerId}/issues`, { body, schema: IssueSaved, idempotencyKey: key }),
     onSuccess: settled,
   });
 }

@@ -1,6 +1,8 @@
 import { useLingui } from "@lingui/react";
 import type { KeyboardEvent } from "react";
 import { type FieldValues, get, useController } from "react-hook-form";
+import { impossibleTrials } from "../../../shared/acoustics/protection/fit-rating";
+import { issueText } from "../../../shared/problems/issue-text";
 import { Field, type FieldProps } from "../../components/form";
 import { NumberInput, type Typed } from "../../components/number-input";
 
@@ -19,9 +21,11 @@ const withoutTail = (values: readonly Typed[]): Typed[] =>
  * comes after this ear.
  */
 export function TrialCells<Values extends FieldValues, Output>({
+  ear,
   onLeave,
   ...props
 }: Omit<FieldProps<Values, Output>, "isReadOnly"> & {
+  ear: "left" | "right";
   /** Enter in an empty cell. */
   onLeave: () => void;
 }) {
@@ -35,9 +39,17 @@ export function TrialCells<Values extends FieldValues, Output>({
     | undefined;
   // The cells' own faults stand under their places.
   const ofCells = Object.values(found ?? {}) as ({ message?: string } | string | undefined)[];
+  const impossible = impossibleTrials({
+    leftDb: ear === "left" ? values : [],
+    rightDb: ear === "right" ? values : [],
+  });
   const error =
-    found?.message ??
-    ofCells.flatMap((one) => (typeof one === "object" ? (one.message ?? []) : []))[0];
+    impossible.length > 0
+      ? impossible.map(({ code, ...params }) => issueText(i18n, { code, params })).join(" ")
+      : (found?.message ??
+        ofCells.flatMap((one) => (typeof one === "object" ? (one.message ?? []) : []))[0]);
+  const isInvalid = (at: number) =>
+    impossible.length === 0 || impossible.some(({ trial }) => trial === at + 1);
 
   function onKeyDown(event: KeyboardEvent<HTMLInputElement>, at: number) {
     if (event.key !== "Enter") return;
@@ -58,7 +70,7 @@ export function TrialCells<Values extends FieldValues, Output>({
                 ref={at === 0 ? field.ref : undefined}
                 name={`${name}.${at}`}
                 aria-label={i18n.t("Trial {number}", { number: at + 1 })}
-                aria-invalid={wires["aria-invalid"]}
+                aria-invalid={isInvalid(at) ? wires["aria-invalid"] : undefined}
                 value={values[at] ?? null}
                 onValue={(value) => {
                   const next = [...values];

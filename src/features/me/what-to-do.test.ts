@@ -314,6 +314,7 @@ describe("whether it fits, in a sentence", () => {
     outcome: "issued",
     dueOn: null,
     isVoid: false,
+    struckReason: null,
     authorName: null,
     can: { change: false },
     ...facts,

@@ -47,7 +47,11 @@ export const CheckFields = z
   });
 export type CheckDraft = z.output<typeof CheckFields>;
 
-export const emptyDraft = (modelId: string | null, ear: Ear): CheckDraft => ({
+export const emptyDraft = (
+  modelId: string | null,
+  ear: Ear,
+  taskId: string | null = null,
+): CheckDraft => ({
   modelId,
   ear,
   how: "recordings",
@@ -62,7 +66,7 @@ export const emptyDraft = (modelId: string | null, ear: Ear): CheckDraft => ({
   correction: "none",
   ownDb: null,
   source: "",
-  taskId: null,
+  taskId,
 });
 
 /** Files as they were chosen: a stereo file stands under `outside`. */

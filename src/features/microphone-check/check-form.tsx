@@ -54,6 +54,7 @@ export function MicrophoneCheckForm({
   models,
   modelId,
   ear,
+  taskId,
   tasks,
   onSent,
 }: {
@@ -63,6 +64,8 @@ export function MicrophoneCheckForm({
   /** Filled in: what the worker wears, and the ear that is next. */
   modelId: string | null;
   ear: MicrophoneCheckView["ear"];
+  /** The one that asks most of a protector, where its octave bands are known: a rating in pink noise may not hold in it. */
+  taskId: string | null;
   /** Tasks whose octave bands are known. */
   tasks: readonly Choice[];
   onSent: (view: MicrophoneCheckView) => void;
@@ -71,7 +74,7 @@ export function MicrophoneCheckForm({
   const locale = useLocale();
   const form = useSchemaForm(CheckFields, {
     mode: "onSubmit",
-    defaultValues: emptyDraft(modelId, ear),
+    defaultValues: emptyDraft(modelId, ear, taskId),
   });
   const [files, setFiles] = useState<ChosenFiles>(noFiles);
   const [faults, setFaults] = useState<Partial<Record<FilePlace, string>>>({});
@@ -148,8 +151,8 @@ export function MicrophoneCheckForm({
         name="ear"
         label={i18n.t("Ear")}
         choices={[
-          { value: "left", label: i18n.t("Left") },
-          { value: "right", label: i18n.t("Right") },
+          { value: "left", label: i18n.t("Left ear") },
+          { value: "right", label: i18n.t("Right ear") },
         ]}
       />
       <RadioGroup
@@ -316,7 +319,7 @@ function CalibrationChoice({ form }: { form: CheckForm }) {
         },
         {
           value: "none",
-          label: i18n.t("None"),
+          label: i18n.t("No calibration"),
           note: i18n.t("No rating then; the active attenuation can still be checked."),
         },
       ]}
@@ -335,7 +338,7 @@ function CorrectionChoice({ form, isOwn }: { form: CheckForm; isOwn: boolean }) 
         choices={[
           {
             value: "none",
-            label: i18n.t("None"),
+            label: i18n.t("No correction"),
             note: i18n.t("The noise reduction is taken for the attenuation."),
           },
           {

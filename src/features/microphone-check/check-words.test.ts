@@ -21,6 +21,10 @@ test("an active check in words: passed, failed with its bands, or neither", () =
     activeText(i18n, analysis({ hasPassed, shortfallDb, toleranceDb: 3 }), "en");
   expect(activeText(i18n, analysis(null), "en")).toBeNull();
   expect(check(true, noBands)?.word).toBe("Active check passed");
+  // Far more than stated passes too.
+  expect(check(true, [-9, 3, 0, 0, 0, 0, 0, 0])?.sentence).toBe(
+    "In every band that was heard the active part is no more than 3.0 dB behind what the model states.",
+  );
   expect(check(null, noBands)?.word).toBe("Can’t tell yet");
   const failed = check(false, [null, 6.24, 3.1, 3, 0, 0, 0, -2]);
   expect(failed?.word).toBe("Active check failed");

@@ -158,7 +158,7 @@ export function activeText(
     return {
       word: i18n.t("Active check passed"),
       sentence: i18n.t(
-        "In every band that was heard the active part stays within {tolerance} dB of what the model states.",
+        "In every band that was heard the active part is no more than {tolerance} dB behind what the model states.",
         { tolerance: toleranceDb },
       ),
     };

@@ -6,7 +6,7 @@ import type { KeptBecause, PeriodView } from "../../../shared/schemas/retention"
 export function keptWord(i18n: I18n, because: KeptBecause): string {
   switch (because) {
     case "held":
-      return i18n.t("held");
+      return i18n.t("held back from erasure");
     case "no-term":
       return i18n.t("no term is known");
     case "not-due":

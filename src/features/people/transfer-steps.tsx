@@ -169,7 +169,7 @@ function ReceiptForm({
       />
       <TextField form={form} name="signedBy" label={i18n.t("Signed by")} />
       <DateField form={form} name="signedOn" label={i18n.t("Signed on")} />
-      <FormProblem error={receive.error} />
+      <FormProblem error={receive.error} form={form} />
       <FormActions>
         <SubmitButton isBusy={receive.isPending}>{i18n.t("Record the receipt")}</SubmitButton>
         <TextButton onClick={onDone}>{i18n.t("Leave as it was")}</TextButton>

@@ -92,7 +92,7 @@ export function VisitorsTable({
       onRetry={onRetry}
       groupOf={(visitor) =>
         visitor.state === "over"
-          ? { key: "over", label: i18n.t("Over") }
+          ? { key: "over", label: i18n.t("Ended") }
           : { key: "current", label: i18n.t("May come in") }
       }
       empty={<Empty title={i18n.t("Nobody is let in for a while.")} />}

@@ -306,7 +306,7 @@ function ProtectorForm({ subject, onAdd, onLeave }: PartProps) {
       <SelectField
         form={form}
         name="who"
-        label={i18n.t("By")}
+        label={i18n.t("Worn by")}
         choices={[
           { value: EVERYBODY, label: i18n.t("everybody") },
           ...subject.workers.map(({ id, name }) => ({ value: id, label: name })),
@@ -338,7 +338,7 @@ function WearingForm({ subject, onAdd, onLeave }: PartProps) {
       <SelectField
         form={form}
         name="use"
-        label={i18n.t("In")}
+        label={i18n.t("Worn in")}
         choices={[{ value: EVERYWHERE, label: i18n.t("every task") }, ...taskChoices(subject)]}
       />
       <NumberField form={form} name="wornPct" label={i18n.t("Worn for")} unit="%" />

@@ -185,7 +185,7 @@ export function RecordingForm({
           { value: "sensitivity", label: i18n.t("A known sensitivity") },
           {
             value: "none",
-            label: i18n.t("None"),
+            label: i18n.t("No calibration"),
             note: i18n.t(
               "Levels are then relative: the spectrum’s shape can be used, and no level.",
             ),

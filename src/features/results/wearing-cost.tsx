@@ -46,6 +46,7 @@ export function WearingCost({
         {isOwn
           ? i18n.t("Worn all the time, {level} dB would have reached your ear.", { level })
           : i18n.t("Worn throughout, {level} dB would have reached the ear.", { level })}
+        {costs.isBesideCredit && ` ${i18n.t("That is with the active part off.")}`}
       </p>
     </div>
   );

@@ -1,6 +1,7 @@
 import { useLingui } from "@lingui/react";
 import { queryOptions, useQuery, useQueryClient } from "@tanstack/react-query";
-import { useState } from "react";
+import { useEffect, useState } from "react";
+import { useLocation } from "react-router-dom";
 import { isolate } from "../../../shared/i18n/isolate";
 import { EscalationInput, EscalationList, EscalationView } from "../../../shared/schemas/follow-up";
 import { Button } from "../../components/button";
@@ -29,6 +30,12 @@ export function Escalation({ siteId }: { siteId: string }) {
   const [isOpen, setIsOpen] = useState(false);
   const { data, error, refetch } = useQuery(escalationsQuery);
   const site = data?.rows.find((one) => one.siteId === siteId);
+  const { hash } = useLocation();
+  const isThere = site !== undefined;
+  // Its section is not there yet when a link to it is followed.
+  useEffect(() => {
+    if (isThere && hash === "#escalation") document.getElementById("escalation")?.scrollIntoView();
+  }, [isThere, hash]);
   if (error) return <Failed error={error} onRetry={() => void refetch()} />;
   if (!site)
     return (

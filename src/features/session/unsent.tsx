@@ -13,6 +13,7 @@ import { connectionEvents } from "../../lib/api";
 import { useLocale } from "../../lib/i18n";
 import {
   type ActWords,
+  hasWordsToPassOn,
   type KeptAct,
   keptActsOf,
   type Settled,
@@ -175,6 +176,17 @@ function UnsentAct({
               }}
             >
               {i18n.t("Do it again on what stands")}
+            </Button>
+          )}
+          {hasWordsToPassOn(act) && (
+            <Button
+              size="supervisor"
+              onClick={() => {
+                acts.asComment(act.key);
+                void onAgain();
+              }}
+            >
+              {i18n.t("Pass the words on as a comment")}
             </Button>
           )}
         </div>

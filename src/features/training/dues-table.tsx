@@ -59,7 +59,7 @@ export function DuesTable({
           head: i18n.t("Why"),
           cell: ({ exposedOn, ruleSetKey, siteName }) => (
             <span className="two-lines">
-              {i18n.t("in such noise, first within a year on {date}, {site}", {
+              {i18n.t("The first day in such noise within the last year was {date}, at {site}.", {
                 date: formatShortDate(exposedOn, locale),
                 site: siteName,
               })}

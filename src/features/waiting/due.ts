@@ -1,4 +1,5 @@
 import { foldOrders } from "../../../shared/findings/orders";
+import { isOverdue } from "../../../shared/findings/overdue";
 import type { FindingKind, FindingRow } from "../../../shared/schemas/finding";
 import type { CrewProgress } from "../../../shared/schemas/waiting";
 import { addDays } from "../../../shared/time/zone";
@@ -67,7 +68,7 @@ export function groupOf(
   nextShift: string,
 ): DueGroup {
   const { dueOn } = finding;
-  if (dueOn !== null && dueOn < today) return "overdue";
+  if (isOverdue(finding, today)) return "overdue";
   if (isBeforeNoise(finding, nextShift)) return "before-noise";
   if (dueOn === today) return "today";
   return dueOn !== null && dueOn <= addDays(today, 7) ? "this-week" : "later";

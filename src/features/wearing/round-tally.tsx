@@ -17,17 +17,29 @@ export function TallyRows({
   const { i18n } = useLingui();
   return (
     <ul className="tally">
-      {workers.map(({ id, name, employeeNumber, protectors, tasks }) => (
+      {workers.map(({ id, name, employeeNumber, protector, tasks }) => (
         <li key={id} className="tally-worker">
           <h2>{isolate(name)}</h2>
           <p className="tally-gear">
-            {[employeeNumber, ...protectors].map(isolate).join(", ")}
-            {protectors.length === 0 && `, ${i18n.t("no protector assigned")}`}
+            {[
+              isolate(employeeNumber),
+              protector !== null && isolate(protector),
+              tasks.every((task) => task.protector === null) && i18n.t("no protector assigned"),
+            ]
+              .filter(Boolean)
+              .join(", ")}
           </p>
           {tasks.map((task) => (
             <div key={task.id} className="tally-task">
               <span className="tally-name" id={`tally-${id}-${task.id}`}>
                 {task.name}
+                {protector === null && tasks.some((one) => one.protector !== null) && (
+                  <span className="tally-gear block">
+                    {task.protector === null
+                      ? i18n.t("no protector assigned")
+                      : isolate(task.protector)}
+                  </span>
+                )}
               </span>
               <CountWords count={countOf(id, task.id)} />
               {[true, false].map((isWorn) => {

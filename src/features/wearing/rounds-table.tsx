@@ -19,6 +19,7 @@ import { TextButton, TextLink } from "../../components/link";
 import { useChangeKey } from "../../lib/change-key";
 import { useLocale } from "../../lib/i18n";
 import { useOneAtATime } from "../../lib/one-at-a-time";
+import { saidWords } from "../../lib/wearing-answers";
 import { paths } from "../../paths";
 import { useStrikeRound } from "./queries";
 
@@ -90,10 +91,17 @@ export function RoundsTable({
       id: "worn",
       head: i18n.t("Worn"),
       kind: "right",
-      cell: ({ wornCount, seenCount }) => (
+      cell: ({ source, wornCount, seenCount, looks }) => (
         <span className="two-lines">
-          {i18n.t("{worn} of {seen} looks", { worn: wornCount, seen: seenCount })}
-          <span className="beneath">{formatShare((100 * wornCount) / seenCount, locale)}</span>
+          {source === "round"
+            ? i18n.t("{worn} of {seen} looks", { worn: wornCount, seen: seenCount })
+            : looks.length === 1
+              ? saidWords(i18n, { wornCount, seenCount })
+              : i18n.t("said in {count} answers", { count: looks.length })}
+          <span className="beneath">
+            {source === "own-report" && i18n.t("own report, nobody looked").concat(", ")}
+            {formatShare((100 * wornCount) / seenCount, locale)}
+          </span>
         </span>
       ),
     },
@@ -101,13 +109,21 @@ export function RoundsTable({
       id: "looks",
       head: <span className="sr-only">{i18n.t("Looks")}</span>,
       kind: "right",
-      cell: ({ id, seenOn }) => (
+      cell: ({ id, source, seenOn }) => (
         <TextButton
           aria-expanded={id === openId}
-          aria-label={i18n.t("Looks of {date}", { date: formatShortDate(seenOn, locale) })}
+          aria-label={
+            source === "round"
+              ? i18n.t("Looks of {date}", { date: formatShortDate(seenOn, locale) })
+              : i18n.t("Own report of {date}", { date: formatShortDate(seenOn, locale) })
+          }
           onClick={() => setOpenId(id === openId ? null : id)}
         >
-          {id === openId ? i18n.t("Close") : i18n.t("Looks")}
+          {id === openId
+            ? i18n.t("Close")
+            : source === "round"
+              ? i18n.t("Looks")
+              : i18n.t("Answers")}
         </TextButton>
       ),
     },
@@ -133,12 +149,16 @@ function RoundLooks({ round }: { round: WearingRoundView }) {
   const locale = useLocale();
   const [isStriking, setStriking] = useState(false);
   const date = formatShortDate(round.seenOn, locale);
+  const heading =
+    round.source === "round"
+      ? i18n.t("Looks of {date}", { date })
+      : i18n.t("Own report of {date}", { date });
   return (
     <section className="section" aria-labelledby="round-looks">
-      <h2 id="round-looks">{i18n.t("Looks of {date}", { date })}</h2>
+      <h2 id="round-looks">{heading}</h2>
       {round.note !== "" && round.struckReason !== null && <p>{round.note}</p>}
       <DataTable<WearingRoundView["looks"][number]>
-        caption={i18n.t("Looks of {date}", { date })}
+        caption={heading}
         rows={round.looks}
         rowKey={({ workerId, taskId }) => `${workerId} ${taskId}`}
         columns={[
@@ -157,7 +177,9 @@ function RoundLooks({ round }: { round: WearingRoundView }) {
             kind: "right",
             cell: ({ wornCount, seenCount, isReplaced }) => (
               <span className="two-lines">
-                {i18n.t("{worn} of {seen} looks", { worn: wornCount, seen: seenCount })}
+                {round.source === "round"
+                  ? i18n.t("{worn} of {seen} looks", { worn: wornCount, seen: seenCount })
+                  : saidWords(i18n, { wornCount, seenCount })}
                 {isReplaced && (
                   <span className="beneath">{i18n.t("replaced by a later report")}</span>
                 )}

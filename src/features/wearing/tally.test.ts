@@ -111,7 +111,10 @@ describe("whom to look at", () => {
         name: "Ada",
         employeeNumber: "1",
         taskIds: ["press", "saw"],
-        protectors: ["Cup"],
+        protectors: [
+          { taskId: "press", name: "Cup" },
+          { taskId: "saw", name: "Plug + Cup" },
+        ],
       },
       { id: "ben", name: "Ben", employeeNumber: "2", taskIds: ["press"], protectors: [] },
       { id: "cy", name: "Cy", employeeNumber: "3", taskIds: [], protectors: [] },
@@ -128,6 +131,15 @@ describe("whom to look at", () => {
     const saw = tallyWorkers(tally, "saw");
     expect(saw.workers.map(({ id }) => id)).toEqual(["ada"]);
     expect(saw.withoutTaskCount).toBe(1);
+  });
+
+  test("what is worn stands with its task, and once where it is the same in each of those shown", () => {
+    const [ada, ben] = tallyWorkers(tally, null).workers;
+    expect(ada?.protector).toBeNull();
+    expect(ada?.tasks.map(({ protector }) => protector)).toEqual(["Cup", "Plug + Cup"]);
+    expect([ben?.protector, ben?.tasks[0]?.protector]).toEqual([null, null]);
+    const [sawing] = tallyWorkers(tally, "saw").workers;
+    expect(sawing?.protector).toBe("Plug + Cup");
   });
 
   test("what was tapped of somebody who is no longer listed is not dropped", () => {

@@ -102,8 +102,14 @@ export interface TallyWorker {
   readonly id: string;
   readonly name: string;
   readonly employeeNumber: string;
-  readonly protectors: readonly string[];
-  readonly tasks: readonly { readonly id: string; readonly name: string }[];
+  /** Worn in all of the tasks shown; null: not the same in each, or none. */
+  readonly protector: string | null;
+  /** With the protector that is assigned for it; null: none is. */
+  readonly tasks: readonly {
+    readonly id: string;
+    readonly name: string;
+    readonly protector: string | null;
+  }[];
 }
 
 /** Whom to look at, in one task or in all: those without a task in noise are counted apart. */
@@ -112,12 +118,18 @@ export function tallyWorkers(
   taskId: string | null,
 ): { workers: readonly TallyWorker[]; withoutTaskCount: number } {
   const names = new Map(tasks.map(({ id, name }) => [id, name]));
-  const shown = workers.map(({ taskIds, ...worker }) => ({
-    ...worker,
-    tasks: taskIds
+  const shown = workers.map(({ taskIds, protectors, ...worker }) => {
+    const shownTasks = taskIds
       .filter((id) => taskId === null || id === taskId)
-      .map((id) => ({ id, name: names.get(id) ?? "" })),
-  }));
+      .map((id) => ({
+        id,
+        name: names.get(id) ?? "",
+        protector: protectors.find((one) => one.taskId === id)?.name ?? null,
+      }));
+    const worn = new Set(shownTasks.map(({ protector }) => protector));
+    const [only = null] = worn;
+    return { ...worker, protector: worn.size === 1 ? only : null, tasks: shownTasks };
+  });
   return {
     workers: shown.filter((worker) => worker.tasks.length > 0),
     withoutTaskCount: workers.filter(({ taskIds }) => taskIds.length === 0).length,

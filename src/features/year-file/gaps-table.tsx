@@ -35,7 +35,8 @@ export function GapsTable({
         <caption className="sr-only">{caption}</caption>
         <tbody>
           {GAPS.map((kind) => {
-            const count = counts?.find((one) => one.kind === kind)?.count;
+            const gap = counts?.find((one) => one.kind === kind);
+            const count = gap?.count;
             const isOpen = open === kind;
             return (
               <Fragment key={kind}>
@@ -48,7 +49,7 @@ export function GapsTable({
                     )}
                   </td>
                   <th scope="row">{gapWord(i18n, kind)}</th>
-                  <td className="gap-meaning">{gapMeaning(i18n, kind)}</td>
+                  <td className="gap-meaning">{gapMeaning(i18n, kind, gap?.hasNoInterval)}</td>
                   <td className="is-right">
                     {count !== undefined && count > 0 && (
                       <TextButton
