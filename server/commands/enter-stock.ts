@@ -24,11 +24,12 @@ export async function enterStock(
   const today = todayAt(site.timeZone);
   const issues = dateIssues(["movedOn"], movedOn);
   if (movedOn > today) issues.push(issue(["movedOn"], "in-the-future", { today }));
+  const stock = await stockNow(site.id, { modelId, size, part });
+  // What is not there cannot be lost; tips are changed out of a box that nobody counts as well.
+  if ((kind === "lost" || kind === "damaged") && input.quantity > Math.max(0, stock))
+    issues.push(issue(["quantity"], "more-than-in-stock", { stock: Math.max(0, stock) }));
   if (issues.length > 0) throw unprocessable(issues);
-  const quantity =
-    kind === "counted"
-      ? input.quantity - (await stockNow(site.id, { modelId, size, part }))
-      : SIGN[kind] * input.quantity;
+  const quantity = kind === "counted" ? input.quantity - stock : SIGN[kind] * input.quantity;
   const id = await moveStock(actor, {
     siteId: site.id,
     modelId,

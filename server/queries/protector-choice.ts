@@ -70,7 +70,11 @@ export async function protectorChoice(
   const creditedModelIds = settings.creditsActivePart ? checkedOnAll(wearers) : undefined;
   const ofAll = { wornGear: gear, fits: new Map(), creditedModelIds };
   return {
-    subject: { ...subject, siteName: site.name },
+    subject: {
+      ...subject,
+      siteName: site.name,
+      area: subject.kind === "task" ? await areaOf(subject.id) : null,
+    },
     date,
     ruleSetKey: governing.key,
     ruleSetVersion: governing.version,
@@ -148,6 +152,12 @@ async function nominalMinutes(id: string): Promise<Map<string, number>> {
   return new Map(found.map(({ taskId, durationMin }) => [taskId, durationMin]));
 }
 
+const areaOf = (taskId: string) =>
+  row<{ id: string; name: string }>(
+    "SELECT a.id, a.name FROM tasks t JOIN areas a ON a.id = t.area_id WHERE t.id = :taskId",
+    { taskId },
+  );
+
 async function longestNominalMin(taskId: string): Promise<number | null> {
   const found = await row<{ longest: number | null }>(
     `SELECT max(j.duration_min) AS longest FROM job_tasks j JOIN jobs b ON b.id = j.job_id AND NOT b.is_archived WHERE j.task_id = :taskId`,
@@ -180,9 +190,10 @@ async function wearersOf(
        (SELECT i.name || coalesce(' + ' || o.name, '') FROM assignments a JOIN protector_models i ON i.id = a.inner_model_id
           LEFT JOIN protector_models o ON o.id = a.outer_model_id
         WHERE a.worker_id = w.id AND a.valid @> CAST(:date AS date) AND ${ofUse} ORDER BY a.task_id NULLS LAST, a.area_id NULLS LAST LIMIT 1) AS "currentName",
-       coalesce((SELECT json_agg(json_build_object('use', CASE WHEN a.task_id IS NULL THEN 'everywhere' ELSE 'subject' END,
+       coalesce((SELECT json_agg(json_build_object('use', CASE WHEN a.task_id IS NOT NULL THEN 'subject' WHEN a.area_id IS NOT NULL THEN 'area' ELSE 'everywhere' END,
           'modelId', a.inner_model_id, 'outerModelId', a.outer_model_id, 'fromDate', lower(a.valid)::text))
-        FROM assignments a WHERE a.worker_id = w.id AND upper_inf(a.valid) AND a.area_id IS NULL AND (a.task_id = :id OR a.task_id IS NULL)), '[]') AS holds
+        FROM assignments a WHERE a.worker_id = w.id AND upper_inf(a.valid) AND (a.task_id = :id OR a.task_id IS NULL)
+          AND (a.area_id IS NULL OR a.area_id = (SELECT area_id FROM tasks WHERE id = :id))), '[]') AS holds
      FROM workers w WHERE w.site_id = :siteId AND ${ofSubject} AND w.hired_on <= CAST(:date AS date) + 31
        AND (w.left_on IS NULL OR w.left_on >= CAST(:date AS date)) AND ${visible(workerPolicy, actor, "w")}
      ORDER BY w.name, w.id LIMIT ${MOST_WEARERS + 1}`,

@@ -470,6 +470,11 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("This fit is not assessed for one ear: say why it goes out all the same.");
     case "one-kind-offered":
       return i18n.t("Only one kind was on offer. Offer another, or say why not.");
+    case "more-than-in-stock":
+      return i18n.t(
+        "{stock, plural, =0 {None is} one {# is} other {# are}} in stock. Enter what came in first, or count what is there.",
+        { stock: Number(params.stock) },
+      );
     case "none-in-stock":
       return i18n.t("None of this size is in stock. Say why it goes out all the same.");
     case "issued-not-offered":

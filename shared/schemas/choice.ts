@@ -29,10 +29,10 @@ export const Wearer = z.object({
   hiredOn: IsoDate,
   /** What is assigned for this use today. */
   currentName: z.string().nullable(),
-  /** What is assigned until further notice for the task, or everywhere: given anew it would change nothing. */
+  /** What is assigned until further notice for the task, its area, or everywhere: given anew it would change nothing. */
   holds: z.array(
     z.object({
-      use: z.enum(["subject", "everywhere"]),
+      use: z.enum(["subject", "area", "everywhere"]),
       modelId: z.uuid(),
       outerModelId: z.uuid().nullable(),
       fromDate: IsoDate,
@@ -59,6 +59,8 @@ export const ProtectorChoiceView = z.object({
     name: z.string(),
     siteId: z.uuid(),
     siteName: z.string(),
+    /** Where a task is done; a job is done in many. */
+    area: z.object({ id: z.uuid(), name: z.string() }).nullable(),
   }),
   date: IsoDate,
   ruleSetKey: z.string(),

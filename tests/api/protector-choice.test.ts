@@ -1,6 +1,7 @@
 import { expect, test } from "vitest";
 import type { GivingPreview, IssueSlip, ProtectorChoiceView } from "../../shared/schemas/choice";
 import {
+  buildArea,
   buildAssignment,
   buildCrew,
   buildFitTest,
@@ -175,9 +176,38 @@ test("orders the register by EN 458's words for a task, and says what decided", 
     [worker.id, "Good"],
   ]);
   expect(choice.wearers.map(({ id }) => id)).not.toContain(other.id);
-  expect(choice.wearers[0]?.holds).toEqual([
-    { use: "everywhere", modelId: good.id, outerModelId: null, fromDate: expect.any(String) },
-  ]);
+  const everywhere = {
+    use: "everywhere",
+    modelId: good.id,
+    outerModelId: null,
+    fromDate: expect.any(String),
+  };
+  expect(choice.wearers[0]?.holds).toEqual([everywhere]);
+  expect(choice.subject.area).toBeNull();
+
+  // In the task's area it can be given as well, and whoever has it there is said to.
+  const { id: areaId } = await buildArea({ site, name: "Booths" });
+  await select("UPDATE tasks SET area_id = $2 WHERE id = $1", [task.id, areaId]);
+  const given = await client.post("/assignments/many", {
+    workerIds: [worker.id],
+    assignment: {
+      taskId: null,
+      areaId,
+      innerModelId: good.id,
+      outerModelId: null,
+      fromDate: daysFromToday(0),
+      toDate: null,
+      size: null,
+      audioDb: null,
+    },
+  });
+  expect(given.status).toBe(201);
+  const again = (await client.get(`/protector-choice?taskId=${task.id}`))
+    .body as ProtectorChoiceView;
+  expect(again.subject.area).toEqual({ id: areaId, name: "Booths" });
+  expect(again.wearers[0]?.holds).toEqual(
+    expect.arrayContaining([everywhere, { ...everywhere, use: "area" }]),
+  );
 });
 
 test("two together in the US: five more than the better one after its derating", async () => {

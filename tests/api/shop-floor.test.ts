@@ -671,6 +671,11 @@ test("a count enters the difference, and cushions are due by the model's interva
     });
   await move("received", 20);
   await move("lost", 3);
+  const tooMany = await move("lost", 18);
+  expect(tooMany.status).toBe(422);
+  expect(tooMany.body.issues).toMatchObject([
+    { path: ["quantity"], code: "more-than-in-stock", params: { stock: 17 } },
+  ]);
   expect((await move("counted", 15)).body).toMatchObject({ quantity: -2 });
   expect((await officer.get("/stock")).body.rows).toMatchObject([{ quantity: 15, part: "device" }]);
   const worker = await buildWorker({ site });

@@ -28,7 +28,7 @@ import { GiveReview } from "./give-review";
 import { useAssignMany } from "./queries";
 
 const GiveFields = z.object({
-  use: z.enum(["subject", "everywhere"]),
+  use: z.enum(["subject", "area", "everywhere"]),
   fromDate: z.iso.date(),
   workerIds: z.array(z.uuid()).min(1),
 });
@@ -130,7 +130,7 @@ export function GiveForm({
           workerIds,
           assignment: {
             taskId: filled.use === "subject" && subject.kind === "task" ? subject.id : null,
-            areaId: null,
+            areaId: filled.use === "area" ? (subject.area?.id ?? null) : null,
             innerModelId: candidate.modelId,
             outerModelId: candidate.outerModelId,
             fromDate: filled.fromDate,
@@ -150,6 +150,14 @@ export function GiveForm({
           label={i18n.t("Worn")}
           choices={[
             { value: "subject", label: i18n.t("in the task {name}", { name: subject.name }) },
+            ...(subject.area
+              ? [
+                  {
+                    value: "area",
+                    label: i18n.t("in the area {name}", { name: subject.area.name }),
+                  },
+                ]
+              : []),
             { value: "everywhere", label: i18n.t("everywhere in noise") },
           ]}
         />

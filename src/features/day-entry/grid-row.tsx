@@ -108,7 +108,9 @@ export const GridRow = memo(function GridRow(props: GridRowProps) {
             {index + 1}
           </span>
           <span className="two-lines">
-            <span className="who-name">{worker.name}</span>{" "}
+            <span className="who-name" title={worker.name}>
+              {worker.name}
+            </span>{" "}
             <span className="who-state">
               {worker.employeeNumber}{" "}
               <span className={state === "saved" ? undefined : "is-waiting"}>

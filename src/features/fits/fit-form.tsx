@@ -2,7 +2,7 @@ import { useLingui } from "@lingui/react";
 import { type Ref, useEffect, useImperativeHandle, useRef } from "react";
 import { z } from "zod";
 import { barToTrial } from "../../../shared/acoustics/protection/barred";
-import { formatLevel } from "../../../shared/format/level";
+import { formatLevelWithUnit } from "../../../shared/format/level";
 import type { Candidate, FitTestView, FittingDesk } from "../../../shared/schemas/fit";
 import { exclusionWord } from "../../../shared/words/register-words";
 import {
@@ -119,8 +119,7 @@ export function FitForm({
       candidate.excludedBy
         ? exclusionWord(i18n, candidate.excludedBy)
         : candidate.word && protectorWordText(i18n, candidate.word),
-      judgedDb(candidate) !== null &&
-        i18n.t("{level} at the ear", { level: formatLevel(judgedDb(candidate), locale) }),
+      judgedDb(candidate) !== null && formatLevelWithUnit(judgedDb(candidate), locale),
     ]
       .filter(Boolean)
       .join(", ");

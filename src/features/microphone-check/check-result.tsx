@@ -193,7 +193,7 @@ function BandTable({ analysis }: { analysis: CheckAnalysis }) {
       unit: "Hz",
       kind: "figure",
       isRowHead: true,
-      cell: ({ hz }) => formatNumber(hz, 0, locale),
+      cell: ({ hz }) => hz,
     },
     figure("outside", i18n.t("Outside"), (band) => level(off.bands[band]?.outsideDb), unit),
     figure("inside", i18n.t("Inside"), (band) => level(off.bands[band]?.insideDb), unit),
