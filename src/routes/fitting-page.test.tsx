@@ -484,13 +484,13 @@ describe("the fitting desk", () => {
     const credited = open(paths.fittingOf(worker));
     await screen.findByText(/judged with the active part on: its check is passed$/);
     expect(screen.getByText("Chipping 88.1, with the active part on 79.4")).toBeVisible();
-    expect(option()).toHaveTextContent("1. Tern active, Good, 79.4 at the ear");
+    expect(option()).toHaveTextContent("1. Tern active, Good, 79.4 dB");
     credited.unmount();
 
     at = desk({ creditsActivePart: true, candidates: [active({ word: "too-little" })] });
     const unchecked = open(paths.fittingOf(worker));
     await screen.findByText(/judged with the active part off: no passed check on record$/);
-    expect(option()).toHaveTextContent("1. Tern active, Too little, 88.1 at the ear");
+    expect(option()).toHaveTextContent("1. Tern active, Too little, 88.1 dB");
     unchecked.unmount();
 
     at = desk({ candidates: [active({ word: "too-little" })] });
@@ -507,9 +507,7 @@ describe("the fitting desk", () => {
     });
     open(paths.fittingOf(worker));
     const device = await screen.findByLabelText("Device");
-    expect(within(device).getByRole("option")).toHaveTextContent(
-      "1. Fenmuff, Enough, 75.9 at the ear",
-    );
+    expect(within(device).getByRole("option")).toHaveTextContent("1. Fenmuff, Enough, 75.9 dB");
     expect(screen.getByText("Chipping 96.4, shift 75.9")).toBeVisible();
   });
 
