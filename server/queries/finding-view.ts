@@ -6,6 +6,7 @@ import type {
   FindingRow,
   FindingView,
 } from "../../shared/schemas/finding";
+import type { NoticeState } from "../../shared/schemas/notice";
 import { addDays, localDate } from "../../shared/time/zone";
 import { decodeCursor, pageFrom } from "../lib/cursor";
 import { rows } from "../lib/db";
@@ -129,7 +130,7 @@ export async function findingView(
     noticeId: string;
     name: string;
     audience: string;
-    state: string;
+    state: NoticeState;
     at: Date | null;
   }>(
     `SELECT DISTINCT n.id AS "noticeId", u.name, n.audience, n.state, coalesce(n.sent_at, n.not_before) AS at

@@ -1,5 +1,6 @@
 import {
   type Ahead,
+  atEarDbOf,
   type ExpectedDay,
   faultsAhead,
   isSettled,
@@ -107,8 +108,7 @@ function todayOf(finding: Found, outlook: Outlook, inOrderOn: string | null): Fi
   const { day, faults, proposal } = outlook;
   const isOfPast = finding.kind === "not-worn-long-enough";
   if (isSettled(finding, inOrderOn, outlook) || (!isOfPast && faults.length === 0)) {
-    const { counted, atEarDb, word } = day.evaluation;
-    return { is: "in-order", atEarDb: counted ? counted.atEarDb : atEarDb, word };
+    return { is: "in-order", atEarDb: atEarDbOf(day.evaluation), word: day.evaluation.word };
   }
   if (isOfPast) return null;
   const isShown = faults.some(({ kind }) => kind === finding.kind);

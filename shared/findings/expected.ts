@@ -27,7 +27,8 @@ const FAULT_KINDS: ReadonlySet<FindingKind> = new Set(
   [...WORN_KINDS].filter((kind) => kind !== "not-worn-long-enough"),
 );
 
-const atEarDbOf = ({ counted, atEarDb }: DayEvaluation): number | null =>
+/** The day at the ear as it is judged, dB; null: not known. */
+export const atEarDbOf = ({ counted, atEarDb }: DayEvaluation): number | null =>
   counted ? counted.atEarDb : atEarDb;
 
 /** What is wrong with what is worn on the day as it is expected, the most urgent first. */

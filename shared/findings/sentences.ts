@@ -5,10 +5,11 @@ import { formatDose } from "../format/dose";
 import { formatDuration } from "../format/duration";
 import { formatLevel, formatLevelChange, formatLimit } from "../format/level";
 import type { Locale } from "../i18n/index";
-import type { FindingKind } from "../schemas/finding";
+import type { FindingKind, FindingRow } from "../schemas/finding";
 import { levelWithBasis } from "./basis";
 import {
   type FindingFacts,
+  factsToday,
   leftOf,
   numberOf,
   remedyOf,
@@ -139,11 +140,11 @@ export function orderSentence(
 }
 
 /** The order of a finding that the usual day, as things stand now, no longer shows. */
-export const inOrderSentence = (i18n: I18n): string =>
+const inOrderSentence = (i18n: I18n): string =>
   i18n.t("See that the next day is in order, then close it");
 
 /** A level at the ear with the word for what is worn: "79.7, Good"; null where the level is not known. */
-export function atEarFigure(
+function atEarFigure(
   locale: Locale,
   { atEarDb, word }: { readonly atEarDb: number | null; readonly word: ProtectorWord | null },
   wordText: (word: ProtectorWord) => string,
@@ -161,6 +162,23 @@ export function remedyFigure(
 ): string | null {
   const remedy = remedyOf(facts);
   return remedy && atEarFigure(locale, remedy, wordText);
+}
+
+/** What a finding asks for as things stand now, and the level at the ear: of the remedy, or of the usual day as it is. */
+export function orderToday(
+  i18n: I18n,
+  locale: Locale,
+  finding: Pick<FindingRow, "kind" | "facts" | "today">,
+  wordText: (word: ProtectorWord) => string,
+): { readonly order: string; readonly figure: string | null } {
+  const { kind, today } = finding;
+  if (today?.is === "in-order")
+    return { order: inOrderSentence(i18n), figure: atEarFigure(locale, today, wordText) };
+  const facts = factsToday(finding);
+  return {
+    order: orderSentence(i18n, locale, kind, facts),
+    figure: remedyFigure(locale, facts, wordText),
+  };
 }
 
 /** What the program noticed, for officers and supervisors, without a full stop. */

@@ -1,5 +1,6 @@
 import { z } from "zod";
 import { Can, IsoDate, PageQuery, pageOf, Reason } from "./common";
+import { NoticeState } from "./notice";
 
 export const FINDING_KINDS = [
   "over-limit-outside",
@@ -157,7 +158,7 @@ export const FindingView = FindingRow.extend({
       noticeId: z.uuid(),
       name: z.string(),
       audience: z.string(),
-      state: z.string(),
+      state: NoticeState,
       at: z.string().nullable(),
     }),
   ),

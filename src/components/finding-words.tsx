@@ -1,13 +1,5 @@
 import { useLingui } from "@lingui/react";
-import type { ProtectorWord } from "../../shared/acoustics/types";
-import { factsToday } from "../../shared/findings/facts";
-import {
-  atEarFigure,
-  inOrderSentence,
-  noticedSentence,
-  orderSentence,
-  remedyFigure,
-} from "../../shared/findings/sentences";
+import { noticedSentence, orderToday } from "../../shared/findings/sentences";
 import { formatDate } from "../../shared/format/date";
 import type { FindingRow } from "../../shared/schemas/finding";
 import { useLocale } from "../lib/i18n";
@@ -19,15 +11,10 @@ type Said = Pick<FindingRow, "kind" | "facts" | "today" | "rulesUntil">;
 export function FindingWords({ finding, more = "" }: { finding: Said; more?: string }) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  const { kind, facts, today, rulesUntil } = finding;
-  const wordText = (word: ProtectorWord) => protectorWordText(i18n, word);
-  const [order, figure] =
-    today?.is === "in-order"
-      ? [inOrderSentence(i18n), atEarFigure(locale, today, wordText)]
-      : [
-          orderSentence(i18n, locale, kind, factsToday(finding)),
-          remedyFigure(locale, factsToday(finding), wordText),
-        ];
+  const { kind, facts, rulesUntil } = finding;
+  const { order, figure } = orderToday(i18n, locale, finding, (word) =>
+    protectorWordText(i18n, word),
+  );
   const noticed = noticedSentence(i18n, locale, kind, facts);
   return (
     <span className="two-lines">

@@ -2,10 +2,7 @@ import { useLingui } from "@lingui/react";
 import { type UseQueryResult, useQuery } from "@tanstack/react-query";
 import { useState } from "react";
 import { useParams } from "react-router-dom";
-import type {
-  ProtectorWord as ProtectorWordKey,
-  RuleSetVersion,
-} from "../../shared/acoustics/types";
+import type { RuleSetVersion } from "../../shared/acoustics/types";
 import { citationOf, criterionValue, levelBasis, ruleSetOf } from "../../shared/findings/basis";
 import {
   factsToday,
@@ -15,13 +12,7 @@ import {
   remedyOf,
 } from "../../shared/findings/facts";
 import { isOverdue } from "../../shared/findings/overdue";
-import {
-  atEarFigure,
-  inOrderSentence,
-  noticedSentence,
-  orderSentence,
-  remedyFigure,
-} from "../../shared/findings/sentences";
+import { noticedSentence, orderToday } from "../../shared/findings/sentences";
 import { findingStateWord, findingWord } from "../../shared/findings/words";
 import { formatDate, formatInstant, formatShortDate } from "../../shared/format/date";
 import { formatLevel } from "../../shared/format/level";
@@ -229,24 +220,19 @@ function Finding({ finding }: { finding: FindingView }) {
 function WhatToDo({ finding }: { finding: FindingView }) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  const { kind, today } = finding;
-  const wordText = (word: ProtectorWordKey) => protectorWordText(i18n, word);
-  if (today?.is === "in-order") {
-    const figure = atEarFigure(locale, today, wordText);
-    return (
-      <p className="finding-order">
-        <b>{inOrderSentence(i18n)}.</b>{" "}
-        {i18n.t("Nothing has to be given: with what is worn now the usual day is in order.")}{" "}
-        {figure && i18n.t("It would be {figure}.", { figure })}
-      </p>
-    );
-  }
-  const facts = factsToday(finding);
-  const figure = remedyFigure(locale, facts, wordText);
+  const { order, figure } = orderToday(i18n, locale, finding, (word) =>
+    protectorWordText(i18n, word),
+  );
+  const isInOrder = finding.today?.is === "in-order";
   return (
     <p className="finding-order">
-      <b>{orderSentence(i18n, locale, kind, facts)}.</b>{" "}
-      {figure && i18n.t("Worn throughout that would be {figure}.", { figure })}
+      <b>{order}.</b>{" "}
+      {isInOrder &&
+        i18n.t("Nothing has to be given: with what is worn now the usual day is in order.")}{" "}
+      {figure &&
+        (isInOrder
+          ? i18n.t("It would be {figure}.", { figure })
+          : i18n.t("Worn throughout that would be {figure}.", { figure }))}
     </p>
   );
 }

@@ -4,29 +4,13 @@ import { cleanup, render, screen } from "@testing-library/react";
 import { MemoryRouter } from "react-router-dom";
 import { expect, test } from "vitest";
 import type { SessionRole } from "../../shared/schemas/session";
-import { sessionQuery } from "../features/session/session";
-import { createQueryClient } from "../lib/query-client";
+import { clientOf } from "../features/session/test-session";
 import { TestLanguage } from "../lib/test-i18n";
 import { ProtectorWays } from "./protector-frame";
 import { registerRoutes } from "./register-routes";
 
 function waysOf(role: SessionRole): string[] {
-  const client = createQueryClient();
-  client.setQueryData(sessionQuery.queryKey, {
-    pendingName: null,
-    endedAt: null,
-    user: {
-      id: "01000000-0000-4000-8000-000000000001",
-      name: "N. N.",
-      email: null,
-      language: "en",
-      workerId: null,
-      roles: [role],
-      organizationName: "Ostmere",
-      sites: [],
-      visits: [],
-    },
-  });
+  const client = clientOf(role);
   render(
     <TestLanguage>
       <QueryClientProvider client={client}>

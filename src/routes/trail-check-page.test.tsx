@@ -4,8 +4,7 @@ import { cleanup, render, screen, within } from "@testing-library/react";
 import userEvent from "@testing-library/user-event";
 import { MemoryRouter } from "react-router-dom";
 import { afterEach, expect, test, vi } from "vitest";
-import { sessionQuery } from "../features/session/session";
-import { createQueryClient } from "../lib/query-client";
+import { clientOf } from "../features/session/test-session";
 import { TestLanguage } from "../lib/test-i18n";
 import { Component as TrailCheckPage } from "./trail-check-page";
 
@@ -38,22 +37,7 @@ function show() {
         : state;
     return new Response(JSON.stringify(body), { status: 200 });
   });
-  const client = createQueryClient();
-  client.setQueryData(sessionQuery.queryKey, {
-    pendingName: null,
-    endedAt: null,
-    user: {
-      id: "01000000-0000-4000-8000-000000000001",
-      name: "N. N.",
-      email: null,
-      language: "en",
-      workerId: null,
-      roles: ["auditor"],
-      organizationName: "Ostmere",
-      sites: [],
-      visits: [],
-    },
-  });
+  const client = clientOf("auditor");
   render(
     <TestLanguage>
       <QueryClientProvider client={client}>

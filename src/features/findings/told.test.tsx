@@ -4,9 +4,8 @@ import { cleanup, render, screen } from "@testing-library/react";
 import { MemoryRouter } from "react-router-dom";
 import { afterEach, expect, test } from "vitest";
 import type { FindingView } from "../../../shared/schemas/finding";
-import { createQueryClient } from "../../lib/query-client";
 import { TestLanguage } from "../../lib/test-i18n";
-import { sessionQuery } from "../session/session";
+import { clientOf } from "../session/test-session";
 import { Told } from "./told";
 
 afterEach(cleanup);
@@ -23,22 +22,7 @@ const overdue = {
 } as unknown as FindingView;
 
 function show(changes: Partial<FindingView>, role: "officer" | "auditor" = "officer") {
-  const client = createQueryClient();
-  client.setQueryData(sessionQuery.queryKey, {
-    pendingName: null,
-    endedAt: null,
-    user: {
-      id: "01000000-0000-4000-8000-000000000001",
-      name: "N. N.",
-      email: null,
-      language: "en",
-      workerId: null,
-      roles: [role],
-      organizationName: "Ostmere",
-      sites: [],
-      visits: [],
-    },
-  });
+  const client = clientOf(role);
   render(
     <TestLanguage>
       <QueryClientProvider client={client}>

@@ -4,33 +4,11 @@ import { NEWS_FOR_DAYS } from "../../../shared/findings/notified";
 import { isOverdue } from "../../../shared/findings/overdue";
 import { formatDate, formatInstant } from "../../../shared/format/date";
 import type { FindingView } from "../../../shared/schemas/finding";
+import { toldWord } from "../../../shared/words/told-word";
 import { TextButton, TextLink } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
 import { paths } from "../../paths";
 import { hasRole, useUser } from "../session/session";
-
-function toldWord(i18n: I18n, state: string): string {
-  switch (state) {
-    case "waiting":
-      return i18n.t("will be told");
-    case "held":
-      return i18n.t("held");
-    case "sending":
-      return i18n.t("is being sent");
-    case "sent":
-      return i18n.t("was told");
-    case "possibly-sent":
-      return i18n.t("possibly sent");
-    case "failed":
-      return i18n.t("not sent");
-    case "bounced":
-      return i18n.t("came back undeliverable");
-    case "on-paper":
-      return i18n.t("was told on paper or in person");
-    default:
-      return i18n.t("withdrawn");
-  }
-}
 
 function untoldWords(i18n: I18n, untold: NonNullable<FindingView["untold"]>): string {
   switch (untold) {

@@ -3,8 +3,7 @@ import { QueryClientProvider } from "@tanstack/react-query";
 import { render, screen } from "@testing-library/react";
 import { MemoryRouter } from "react-router-dom";
 import { expect, test } from "vitest";
-import { createQueryClient } from "../../lib/query-client";
-import { sessionQuery } from "../session/session";
+import { clientOf } from "../session/test-session";
 import { MeasuredLink } from "./measured-link";
 
 test.each([
@@ -14,22 +13,7 @@ test.each([
 ] as const)(
   "a survey is named to the %s, and a link only to whom its page is open",
   (role, links) => {
-    const client = createQueryClient();
-    client.setQueryData(sessionQuery.queryKey, {
-      pendingName: null,
-      endedAt: null,
-      user: {
-        id: "01000000-0000-4000-8000-000000000001",
-        name: "N. N.",
-        email: null,
-        language: "en",
-        workerId: null,
-        roles: [role],
-        organizationName: "Ostmere",
-        sites: [],
-        visits: [],
-      },
-    });
+    const client = clientOf(role);
     render(
       <QueryClientProvider client={client}>
         <MemoryRouter>

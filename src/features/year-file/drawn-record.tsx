@@ -9,13 +9,14 @@ import { ruleSetVersion } from "../../../shared/rule-sets";
 import type { DrawnRecord, DrawView } from "../../../shared/schemas/draw";
 import { fieldCheckDriftDb, isWithinTolerance } from "../../../shared/schemas/run-doubts";
 import { letterStateWord } from "../../../shared/words/letter-words";
+import { toldWord } from "../../../shared/words/told-word";
 import { AtEarFigure, OutsideFigure } from "../../components/day-figures";
 import { TextButton, TextLink } from "../../components/link";
 import { Section } from "../../components/page";
 import { useLocale } from "../../lib/i18n";
 import { useMoveFocus } from "../../lib/move-focus";
 import { paths } from "../../paths";
-import { markWord, toldWord } from "./draw-words";
+import { markWord } from "./draw-words";
 import { MarkForm } from "./mark-form";
 
 /** One drawn record from what it rests on to what came of it, and its mark. */
