@@ -291,6 +291,9 @@ describe("the fitting desk", () => {
   test("a name asks which one is meant, and a number that nobody has says so", async () => {
     const user = userEvent.setup();
     open();
+    await user.keyboard("{Enter}");
+    expect(await screen.findByText("This is needed.")).toBeVisible();
+    expect(number()).toHaveFocus();
     await user.keyboard("999{Enter}");
     expect(await screen.findByText("Nobody here has this number or name.")).toBeVisible();
     await user.clear(number());
@@ -562,7 +565,9 @@ describe("the fitting desk", () => {
     sessionStorage.clear();
     at = desk({ tests: [tested(facts, { hasPassed: false })] });
     open(paths.fittingOf(worker));
-    await user.click(await screen.findByRole("button", { name: "Issue Fenmuff" }));
+    await screen.findByText("Fenmuff did not fit this worker when it was last tested.");
+    expect(screen.queryByRole("button", { name: "Issue Fenmuff without a test" })).toBeNull();
+    await user.click(screen.getByRole("button", { name: "Issue Fenmuff" }));
     const failed = await screen.findByRole("form", { name: "Issue Fenmuff" });
     await user.click(within(failed).getByLabelText("Alder foam"));
     expect(within(failed).getByText(/This fit did not pass\. Only officers/)).toBeVisible();

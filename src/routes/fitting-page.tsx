@@ -121,6 +121,9 @@ function AtDesk({
   };
   const chosen = desk.candidates.find(({ modelId }) => modelId === chosenId);
   const chosenBar = barOf(chosenId);
+  // The latest first: a device that failed goes out from its own row, where what it falls short by is named.
+  const hasFailed =
+    desk.tests.find(({ modelId, isVoid }) => modelId === chosenId && !isVoid)?.hasPassed === false;
   const isOut = ({ modelId, size }: FitTestView) =>
     desk.issued.some(
       (one) => one.modelId === modelId && (one.size === null || size === null || one.size === size),
@@ -312,12 +315,16 @@ function AtDesk({
         />
         {can.issue && chosen && !toIssue && (
           <p className="after-table">
-            {chosenBar === null ? (
+            {chosenBar !== null ? (
+              `${chosen.name} ${barWord(i18n, chosenBar)}.`
+            ) : hasFailed ? (
+              i18n.t("{protector} did not fit this worker when it was last tested.", {
+                protector: chosen.name,
+              })
+            ) : (
               <Button onClick={() => setToIssue({ modelId: chosenId, size: null, fit: null })}>
                 {i18n.t("Issue {protector} without a test", { protector: chosen.name })}
               </Button>
-            ) : (
-              `${chosen.name} ${barWord(i18n, chosenBar)}.`
             )}
           </p>
         )}

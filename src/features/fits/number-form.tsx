@@ -28,6 +28,7 @@ export function NumberForm({
   const input = useRef<HTMLInputElement>(null);
   const [text, setText] = useState("");
   const [found, setFound] = useState<FittingFound["rows"] | null>(null);
+  const [isMissing, setIsMissing] = useState(false);
   const ask = useMutation({
     mutationFn: lookUp,
     onSuccess: ({ rows }) => {
@@ -44,6 +45,7 @@ export function NumberForm({
     next() {
       setText("");
       setFound(null);
+      setIsMissing(false);
       input.current?.focus();
     },
   }));
@@ -60,6 +62,7 @@ export function NumberForm({
       onSubmit={(event) => {
         event.preventDefault();
         const asked = text.trim();
+        setIsMissing(asked === "");
         if (asked !== "" && !ask.isPending) ask.mutate(asked);
       }}
     >
@@ -75,11 +78,12 @@ export function NumberForm({
           // biome-ignore lint/a11y/noAutofocus: the page begins with it, and a scanner types at once
           autoFocus
           value={text}
-          aria-invalid={found?.length === 0 || undefined}
-          aria-describedby={found ? `${id}-found` : undefined}
+          aria-invalid={isMissing || found?.length === 0 || undefined}
+          aria-describedby={isMissing || found ? `${id}-found` : undefined}
           onChange={(event) => {
             setText(event.target.value);
             setFound(null);
+            setIsMissing(false);
           }}
         />
         <Button type="submit" isBusy={ask.isPending}>
@@ -87,8 +91,14 @@ export function NumberForm({
         </Button>
       </span>
       <div id={`${id}-found`} role="status">
+        {isMissing && <p className="field-error">{i18n.t("This is needed.")}</p>}
         {found?.length === 0 && (
-          <p className="field-error">{i18n.t("Nobody here has this number or name.")}</p>
+          <>
+            <p className="field-error">{i18n.t("Nobody here has this number or name.")}</p>
+            <p className="beneath">
+              {i18n.t("Is it typed as it stands under Workers, and at a site of yours?")}
+            </p>
+          </>
         )}
         {found && found.length > 0 && (
           <ul className="number-found">
