@@ -48,7 +48,7 @@ function useActText(): (words: ActWords) => string {
 function settledText(i18n: I18n, { outcome }: Settled, act: string): string {
   return outcome === "sent"
     ? i18n.t("Sent. {act}", { act })
-    : i18n.t("Was already done. {act}", { act });
+    : i18n.t("{act}. It was already done.", { act });
 }
 
 /** At the foot of the screen: what this person did and nobody has received yet, and whether a newer version is there. */
