@@ -382,6 +382,12 @@ describe("the fitting desk", () => {
     expect(within(form).getByText("Does not fit")).toBeVisible();
     expect(within(form).getByText(/Left ear only/)).toBeVisible();
     expect(within(form).getByText(/single trial says nothing/)).toBeVisible();
+    expect(within(form).queryByText(/Is the sign right/)).toBeNull();
+    await user.clear(within(left).getByLabelText("Trial 1"));
+    await user.type(within(left).getByLabelText("Trial 1"), "-3");
+    expect(
+      within(form).getByText(/^A trial below 0 dB says .* Is the sign right\?$/),
+    ).toBeVisible();
     await user.clear(within(left).getByLabelText("Trial 1"));
     await user.type(within(left).getByLabelText("Trial 1"), "70");
     expect(within(left).getByText(/^Left ear, trial 1: 70.0 dB is more than/)).toBeVisible();

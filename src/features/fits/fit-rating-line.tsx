@@ -78,6 +78,13 @@ export function FitRatingLine({
       )}
       <LabelLess7 db={labelLess7Db} />
       <FitScale ticksDb={ears} uprightDb={uprightDb} />
+      {[...leftDb, ...rightDb].some((trialDb) => trialDb < 0) && (
+        <p className="field-note">
+          {i18n.t(
+            "A trial below 0 dB says that it was louder under the protector than without it. Is the sign right?",
+          )}
+        </p>
+      )}
       {hasSingleTrial && (
         <p className="field-note">
           {i18n.t(
