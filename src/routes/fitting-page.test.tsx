@@ -569,7 +569,14 @@ describe("the fitting desk", () => {
     oneEar.unmount();
 
     sessionStorage.clear();
-    at = desk({ tests: [tested(facts, { hasPassed: false })] });
+    const lastFit = { parDb: 18, hasPassed: false, needDb: 19, testedOn: "2026-12-01" };
+    at = desk({
+      candidates: [
+        candidate(muff, "Fenmuff", "earmuff", { lastFit }),
+        candidate(plug, "Alder foam", "foam-plug"),
+      ],
+      tests: [tested(facts, { hasPassed: false })],
+    });
     open(paths.fittingOf(worker));
     await screen.findByText("Fenmuff did not fit this worker when it was last tested.");
     expect(screen.queryByRole("button", { name: "Issue Fenmuff without a test" })).toBeNull();

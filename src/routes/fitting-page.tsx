@@ -121,9 +121,8 @@ function AtDesk({
   };
   const chosen = desk.candidates.find(({ modelId }) => modelId === chosenId);
   const chosenBar = barOf(chosenId);
-  // The latest first: a device that failed goes out from its own row, where what it falls short by is named.
-  const hasFailed =
-    desk.tests.find(({ modelId, isVoid }) => modelId === chosenId && !isVoid)?.hasPassed === false;
+  // A device that failed goes out from its own row, where what it falls short by is named.
+  const chosenHasFailed = chosen?.lastFit?.hasPassed === false;
   const isOut = ({ modelId, size }: FitTestView) =>
     desk.issued.some(
       (one) => one.modelId === modelId && (one.size === null || size === null || one.size === size),
@@ -317,7 +316,7 @@ function AtDesk({
           <p className="after-table">
             {chosenBar !== null ? (
               `${chosen.name} ${barWord(i18n, chosenBar)}.`
-            ) : hasFailed ? (
+            ) : chosenHasFailed ? (
               i18n.t("{protector} did not fit this worker when it was last tested.", {
                 protector: chosen.name,
               })
