@@ -59,11 +59,11 @@ function impossibleTrialText(i18n: I18n, { ear, trial, foundDb, limitDb }: Field
   };
   return ear === "left"
     ? i18n.t(
-        "Left ear, trial {trial}: {found} dB is more than an ear can have. Above {limit} dB sound comes through the skull (bone conduction, JASA 114, 2003, from memory). Look at that trial again.",
+        "Left ear, trial {trial}: {found} dB is more than an ear can have. Above {limit} dB sound comes through the skull (bone conduction). Look at that trial again.",
         values,
       )
     : i18n.t(
-        "Right ear, trial {trial}: {found} dB is more than an ear can have. Above {limit} dB sound comes through the skull (bone conduction, JASA 114, 2003, from memory). Look at that trial again.",
+        "Right ear, trial {trial}: {found} dB is more than an ear can have. Above {limit} dB sound comes through the skull (bone conduction). Look at that trial again.",
         values,
       );
 }

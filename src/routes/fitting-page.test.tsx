@@ -146,12 +146,15 @@ interface Sent {
 let sent: Sent[];
 let at: FittingDesk;
 let refusals: RefusalList["rows"];
+/** Whether the server finds that what is recorded next fits. */
+let hasPassed: boolean;
 let answerIssue: () => { status: number; body: object };
 
 beforeEach(() => {
   sent = [];
   at = desk();
   refusals = [];
+  hasPassed = true;
   answerIssue = () => ({ status: 201, body: IssueSaved.parse(issued) });
   sessionStorage.clear();
   vi.stubGlobal("fetch", async (path: string, init: RequestInit = {}) => {
@@ -159,7 +162,7 @@ beforeEach(() => {
     const body = JSON.parse(String(init.body));
     sent.push({ path, body, key: new Headers(init.headers).get("idempotency-key") });
     if (path.endsWith("/fit-tests")) {
-      const test = tested(body.facts, { modelId: body.modelId });
+      const test = tested(body.facts, { modelId: body.modelId, hasPassed });
       at = desk({ tests: [test] });
       return Response.json(FitTestView.parse(test), { status: 201 });
     }
@@ -394,6 +397,21 @@ describe("the fitting desk", () => {
     expect(within(form).getByText("Not rated while a trial can’t be right.")).toBeVisible();
   });
 
+  test("a fit that failed is said at the trials, and they have the focus for the next", async () => {
+    const user = userEvent.setup();
+    hasPassed = false;
+    open(paths.fittingOf(worker));
+    const form = await screen.findByRole("form", { name: "Test the fit" });
+    const trial = (ear: string) =>
+      within(within(form).getByRole("group", { name: ear })).getByLabelText("Trial 1");
+    await user.type(trial("Left ear"), "14");
+    await user.click(within(form).getByRole("button", { name: "Record the fit" }));
+    expect(await within(form).findByText(/^Fenmuff does not fit: kept as tried\./)).toBeVisible();
+    await waitFor(() => expect(trial("Left ear")).toHaveFocus());
+    expect(trial("Left ear")).toHaveValue("");
+    expect(sent).toHaveLength(1);
+  });
+
   test("each trial that no ear can have is marked once, at its ear, and nothing is sent", async () => {
     const user = userEvent.setup();
     open(paths.fittingOf(worker));
@@ -547,7 +565,7 @@ describe("the fitting desk", () => {
     const facts = { leftDb: [24], rightDb: [24], methodSdDb: 3, bands: null };
     at = desk({ tests: [tested(facts, { isVoid: true, struckReason: "Wrong worker" })] });
     open(paths.fittingOf(worker));
-    expect(await screen.findByText("struck out")).toBeVisible();
+    expect(await screen.findByText("a single trial, struck out")).toBeVisible();
     expect(screen.getByText(/^.?Wrong worker.?, .?S\. Ferrand.?$/)).toBeVisible();
   });
 
@@ -664,7 +682,7 @@ describe("the fitting desk", () => {
     });
     open(paths.fittingOf(worker));
     expect(await screen.findByRole("button", { name: "Issue another Fenmuff" })).toBeVisible();
-    expect(screen.getByText("issued")).toBeVisible();
+    expect(screen.getByText("a single trial, issued")).toBeVisible();
     expect(screen.queryByRole("button", { name: "Issue Fenmuff" })).toBeNull();
   });
 
@@ -677,7 +695,7 @@ describe("the fitting desk", () => {
     await user.type(within(left).getByLabelText("Trial 2"), "20");
     expect(within(form).queryByText(/^PAR/)).toBeNull();
     await user.click(within(form).getByRole("button", { name: "Record the fit" }));
-    expect(await within(left).findByText("This is not a number.")).toBeVisible();
+    expect(await within(left).findByText("Trial 1: This is not a number.")).toBeVisible();
     expect(sent).toEqual([]);
   }, 30_000);
 

@@ -168,16 +168,7 @@ function AtDesk({
               onRecorded={(fit) => {
                 const hasFailed = fit.hasPassed === false;
                 setToIssue(hasFailed ? null : { modelId: fit.modelId, size: fit.size, fit });
-                onSaid(
-                  hasFailed
-                    ? i18n.t(
-                        "{device} does not fit: kept as tried. Put it on anew, or try another.",
-                        {
-                          device: fit.modelName,
-                        },
-                      )
-                    : null,
-                );
+                onSaid(null);
               }}
             />
             <p className="after-table">
@@ -196,6 +187,7 @@ function AtDesk({
             candidates={desk.candidates}
             refusals={refusals.data}
             activeCredit={activeCredit}
+            foldsOnPhone
             chosen={chosenId}
             pickWord={i18n.t("Try")}
             pickLabel={(protector) => i18n.t("Try {protector}", { protector })}

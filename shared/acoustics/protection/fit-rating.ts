@@ -62,6 +62,7 @@ export interface FitTrials {
 /**
  * A worker's personal attenuation rating from trials at both ears: by ear the mean less z·u, one-sided, with
  * u² = s²/n + u_method² (a single trial has no s: then u_method alone, and the result says so). The weaker ear governs.
+ * z is the exact quantile (0.9945 at 84 %); the octave-band α of ISO 4869-2 is its table's, rounded (1.00 at 84 %).
  * Refused where a single trial lies above what the skull lets be reached: a mean would hide it.
  *
  * @throws RangeError for a confidence not between 0 and 100.

@@ -1,4 +1,5 @@
 import { useLingui } from "@lingui/react";
+import { useState } from "react";
 import { formatDuration } from "../../../shared/format/duration";
 import { formatLevel, formatLevelChange } from "../../../shared/format/level";
 import { withinSentence } from "../../../shared/format/words";
@@ -11,6 +12,9 @@ import { TextButton } from "../../components/link";
 import { ProtectorWord, protectorWordText } from "../../components/protector-word";
 import { useLocale } from "../../lib/i18n";
 import { type ActiveCredit, decidedWord, judgedByWord, refusedWord } from "./fit-words";
+
+/** As many as `candidates.css` leaves in sight. */
+const SHOWN_ON_PHONE = 4;
 
 /** A device, or two of them, among candidates. */
 export const candidateKey = ({
@@ -73,6 +77,7 @@ export function CandidatesTable({
   pickWord,
   pickLabel,
   onPick,
+  foldsOnPhone = false,
   hasOwnFit = true,
   refusals = [],
   activeCredit,
@@ -88,6 +93,8 @@ export function CandidatesTable({
   /** The same with the name of what is picked, for the ear. */
   pickLabel?: (name: string) => string;
   onPick?: (candidate: Candidate) => void;
+  /** On a phone only the first and the one picked are shown, until the rest is asked for: other things stand below. */
+  foldsOnPhone?: boolean;
   hasOwnFit?: boolean;
   /** Of the one worker who stands there, the latest first. */
   refusals?: readonly RefusalView[];
@@ -95,6 +102,8 @@ export function CandidatesTable({
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
+  const [showsAll, setShowsAll] = useState(false);
+  const isFolded = foldsOnPhone && !showsAll;
   const less7 = (db: number) => i18n.t("rating − 7: {level}", { level: formatLevel(db, locale) });
   const columns: DataColumn<Candidate>[] = [
     {
@@ -220,7 +229,7 @@ export function CandidatesTable({
     });
   return (
     <>
-      <div className="candidates">
+      <div className={`candidates${isFolded ? " is-folded" : ""}`}>
         <DataTable<Candidate>
           caption={caption}
           rows={candidates}
@@ -236,6 +245,17 @@ export function CandidatesTable({
           }
           empty={<Empty title={i18n.t("No protector is on the register yet.")} />}
         />
+        {foldsOnPhone && candidates.length > SHOWN_ON_PHONE && (
+          <TextButton
+            className="candidates-more"
+            aria-expanded={!isFolded}
+            onClick={() => setShowsAll(!showsAll)}
+          >
+            {isFolded
+              ? i18n.t("All {number} devices", { number: candidates.length })
+              : i18n.t("Show fewer")}
+          </TextButton>
+        )}
       </div>
       <MarginNote candidates={candidates} />
     </>

@@ -1,5 +1,5 @@
 import { useLingui } from "@lingui/react";
-import { type Ref, useEffect, useImperativeHandle, useRef } from "react";
+import { type Ref, useEffect, useImperativeHandle, useRef, useState } from "react";
 import { z } from "zod";
 import { barToTrial } from "../../../shared/acoustics/protection/barred";
 import { formatLevelWithUnit } from "../../../shared/format/level";
@@ -18,6 +18,7 @@ import {
 } from "../../components/form";
 import { FormProblem } from "../../components/form-problem";
 import { protectorWordText } from "../../components/protector-word";
+import { Status } from "../../components/status";
 import { useChangeKey } from "../../lib/change-key";
 import { useLocale } from "../../lib/i18n";
 import { useOneAtATime } from "../../lib/one-at-a-time";
@@ -84,6 +85,11 @@ export function FitForm({
     },
   });
   const values = form.watch();
+  const [misfit, setMisfit] = useState<FitTestView | null>(null);
+  // What does not fit is put on anew, or another is tried. The cells are there again only once the form was emptied.
+  useEffect(() => {
+    if (misfit) form.setFocus("leftDb");
+  }, [misfit, form.setFocus]);
   const isReadable = ![...(values.leftDb ?? []), ...(values.rightDb ?? [])].some(
     (trial: unknown) => trial instanceof Unreadable,
   );
@@ -143,8 +149,7 @@ export function FitForm({
         onSuccess: (test) => {
           changeKey.forget();
           form.reset({ ...form.getValues(), leftDb: [], rightDb: [], note: "" });
-          // What does not fit is put on anew, or another is tried.
-          if (test.hasPassed === false) form.setFocus("leftDb");
+          setMisfit(test.hasPassed === false ? test : null);
           onRecorded(test);
         },
         onError: showFitIssuesOn(form, i18n),
@@ -197,6 +202,14 @@ export function FitForm({
               )
         }
       />
+      <p className="desk-said">
+        <Status>
+          {misfit &&
+            i18n.t("{device} does not fit: kept as tried. Put it on anew, or try another.", {
+              device: misfit.modelName,
+            })}
+        </Status>
+      </p>
       <TrialCells
         form={form}
         name="leftDb"

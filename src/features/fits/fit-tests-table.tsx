@@ -18,6 +18,7 @@ import {
   notRatedWord,
   outcomeWord,
   saysWord,
+  singleTrialWord,
 } from "./fit-words";
 
 /** Fits by date: who, which device, what came off, and whether that was enough. */
@@ -127,6 +128,7 @@ export function FitTestsTable({
           <span className="beneath">
             {[
               oneEarWord(i18n, test),
+              singleTrialWord(i18n, test),
               outcomeWord(i18n, test),
               test.activePassed !== null && test.parDb !== null && activeWord(i18n, test),
               test.dueOn !== null &&

@@ -47,6 +47,12 @@ export function activeWord(i18n: I18n, test: FitTestView): string {
     : i18n.t("active part passed on the right, not checked on the left");
 }
 
+/** Of a test with a single trial of an ear, that it was one: how the next would sit is not in its uncertainty. */
+export const singleTrialWord = (i18n: I18n, { parDb, facts }: FitTestView): string | null =>
+  parDb !== null && (facts.leftDb.length === 1 || facts.rightDb.length === 1)
+    ? i18n.t("a single trial")
+    : null;
+
 /** Whether it fits; of a test that only checked the active part, whether that does its work. */
 export const saysWord = (i18n: I18n, test: FitTestView): string =>
   test.parDb === null && test.activePassed !== null
@@ -126,7 +132,7 @@ export function decidedWord(i18n: I18n, decidedBy: Candidate["decidedBy"]): stri
     case "margin":
       return i18n.t("by the margin at the ear");
     case "least-margin":
-      return i18n.t("by the least margin: all take too much off");
+      return i18n.t("all take off too much, the least first");
     case "fit":
       return i18n.t("by own fit");
     case "battery":

@@ -37,8 +37,6 @@ export function TrialCells<Values extends FieldValues, Output>({
   const found = get(form.formState.errors, name) as
     | { message?: string; root?: { message?: string } }
     | undefined;
-  // The cells' own faults stand under their places.
-  const ofCells = Object.values(found ?? {}) as ({ message?: string } | string | undefined)[];
   const impossible = impossibleTrials({
     leftDb: ear === "left" ? values : [],
     rightDb: ear === "right" ? values : [],
@@ -47,7 +45,11 @@ export function TrialCells<Values extends FieldValues, Output>({
     impossible.length > 0
       ? impossible.map(({ code, ...params }) => issueText(i18n, { code, params })).join(" ")
       : (found?.message ??
-        ofCells.flatMap((one) => (typeof one === "object" ? (one.message ?? []) : []))[0]);
+        found?.root?.message ??
+        values.flatMap((_, at) => {
+          const fault = get(found, `${at}.message`) as string | undefined;
+          return fault ? i18n.t("Trial {trial}: {fault}", { trial: at + 1, fault }) : [];
+        })[0]);
   const isInvalid = (at: number) =>
     impossible.length === 0 || impossible.some(({ trial }) => trial === at + 1);
 
