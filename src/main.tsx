@@ -1,6 +1,7 @@
 import { QueryClientProvider } from "@tanstack/react-query";
 import { StrictMode } from "react";
 import { createRoot } from "react-dom/client";
+import { watchConnection } from "./lib/connection";
 import { LanguageProvider, startI18n } from "./lib/i18n";
 import { createQueryClient } from "./lib/query-client";
 import { applyTheme, readTheme } from "./lib/theme";
@@ -13,6 +14,7 @@ async function start() {
   if (!root) throw new Error("The page has no #root");
   const i18n = await startI18n();
   const queryClient = createQueryClient();
+  watchConnection(queryClient);
   const routes = createRoutes(queryClient, i18n);
   createRoot(root).render(
     <StrictMode>

@@ -45,8 +45,11 @@ export async function workerHistory(
   if (filter.from) conditions.push("d.date >= :from");
   if (filter.to) conditions.push("d.date <= :to");
   if (before) conditions.push("d.date < CAST(:before AS date)");
-  const found = await rows<DayFiguresRow & { shiftMin: number; isStale: boolean }>(
-    `SELECT ${DAY_FIGURES_COLUMNS("r")}, r.shift_min AS "shiftMin", d.is_stale AS "isStale"
+  const found = await rows<
+    DayFiguresRow & { shiftMin: number; isStale: boolean; endsAt: Date | null }
+  >(
+    `SELECT ${DAY_FIGURES_COLUMNS("r")}, r.shift_min AS "shiftMin", d.is_stale AS "isStale",
+       (SELECT max(s.ends_at) FROM shifts s WHERE s.worker_id = d.worker_id AND s.date = d.date AND NOT s.is_void) AS "endsAt"
      FROM days d JOIN day_results r ON r.id = d.current_result_id WHERE ${conditions.join(" AND ")} ORDER BY d.date DESC LIMIT :limit`,
     { workerId, from: filter.from, to: filter.to, before, limit: filter.limit + 1 },
   );
@@ -60,6 +63,8 @@ export async function workerHistory(
       ...presentDayFigures(row),
       shiftMin: row.shiftMin,
       isStale: row.isStale,
+      // An imported day is no account of a shift's hours.
+      endsAt: row.origin === "computed" ? (row.endsAt?.toISOString() ?? null) : null,
       ...underItsRules(row),
       wordsByUse: row === latest ? wordsByUse : [],
     })),

@@ -77,7 +77,7 @@ export function codeText(i18n: I18n, code: string, params: ProblemParams): strin
     case "finding-open-already":
       return i18n.t("A finding for this cause is open already.");
     case "finding-closed":
-      return i18n.t("This finding is closed.");
+      return i18n.t("This finding was closed meanwhile. Nothing was changed.");
     case "too-late-to-undo":
       return i18n.t("It is too late to undo this. Write a comment to the officer.");
     case "plan-put-aside-already":

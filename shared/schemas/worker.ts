@@ -179,6 +179,8 @@ export const HistoryPage = pageOf(
   DayFigures.extend({
     shiftMin: z.number(),
     isStale: z.boolean(),
+    /** When the day's last shift is over; null where no hours are known, as of an imported day. */
+    endsAt: z.iso.datetime().nullable(),
     /** The governing rules' main limit, so that a worker's page draws it without the rule sets; null where they are not known. */
     limit: z.object({ levelDb: z.number(), isAtEar: z.boolean() }).nullable(),
     /** Kinds of the governing criteria that the day is over. */

@@ -6,7 +6,7 @@ import { Empty } from "../components/empty";
 import { Failed } from "../components/failed";
 import { TextLink } from "../components/link";
 import { PageBody, Section } from "../components/page";
-import { LastShift } from "../features/me/last-shift";
+import { LastShift, lastFinished } from "../features/me/last-shift";
 import { MyProtectors } from "../features/me/my-protectors";
 import { protectorsToday } from "../features/me/own-protectors";
 import { ownQueries } from "../features/me/queries";
@@ -16,6 +16,7 @@ import { useUser } from "../features/session/session";
 import { WorkerTrainings } from "../features/training/worker-training";
 import { useLocale } from "../lib/i18n";
 import { usePageTitle } from "../lib/page-title";
+import { useNow } from "../lib/use-now";
 import { OWN_REPORT, paths } from "../paths";
 import "../styles/me.css";
 
@@ -54,14 +55,20 @@ function OwnPage({ workerId }: { workerId: string }) {
   const { sites } = useUser();
   const worker = useQuery(ownQueries.worker(workerId));
   const site = sites.find(({ id }) => id === worker.data?.siteId) ?? sites[0];
-  const today = localDateOf(new Date().toISOString(), site?.timeZone ?? "UTC");
+  const timeZone = site?.timeZone ?? "UTC";
+  const now = useNow();
+  const today = localDateOf(now.toISOString(), timeZone);
   const days = useQuery(ownQueries.days(workerId, aYearBefore(today)));
   const findings = useQuery(ownQueries.findings(workerId));
   const lastDay = days.data?.[0] ?? null;
+  const { finished, running } = lastFinished(days.data ?? [], now);
 
-  // The day of which nobody knows how long it was worn: the worker may say it here.
+  // The day of which nobody knows how long it was worn: the worker may say it here, once it is over.
   const askedFor = findings.data?.find(
-    ({ kind, state }) => kind === "wearing-unknown" && state !== "done",
+    ({ kind, state, lastDate }) =>
+      kind === "wearing-unknown" &&
+      state !== "done" &&
+      running.every(({ date }) => date !== lastDate),
   )?.lastDate;
   const error = worker.error ?? days.error ?? findings.error;
   useEffect(() => void loadHistory().catch(() => undefined), []);
@@ -121,7 +128,16 @@ function OwnPage({ workerId }: { workerId: string }) {
           )}
         </Section>
         <Section title={i18n.t("My last shift")} id="my-last-shift">
-          {part(<LastShift day={lastDay} workerId={workerId} askedFor={askedFor} today={today} />)}
+          {part(
+            <LastShift
+              day={finished}
+              running={running}
+              workerId={workerId}
+              askedFor={askedFor}
+              today={today}
+              timeZone={timeZone}
+            />,
+          )}
         </Section>
         {protectors && (
           <Suspense fallback={null}>

@@ -7,6 +7,7 @@ import {
   buildDay,
   buildJob,
   buildProtector,
+  buildShift,
   buildSite,
   buildSupervisorOf,
   buildTask,
@@ -279,6 +280,25 @@ describe("the list of workers", () => {
     expect(names(answer)).toEqual(["Mine"]);
     expect(answer.body.rows[0].lastDay).toBeNull();
     expect((await client.get(`/workers/${other.id}`)).status).toBe(404);
+  });
+
+  test("a worker's day says when its last shift is over; nothing where no hours are known", async () => {
+    const site = await buildSite();
+    const worker = await buildWorker({ site });
+    await buildDay(worker, "2026-03-01", { origin: "imported", governingRuleSet: "uk-2005" });
+    await buildDay(worker, "2026-03-02");
+    await buildShift(worker, { date: "2026-03-02", localStart: "06:00", lengthMin: 120 });
+    await buildShift(worker, { date: "2026-03-02", localStart: "22:00", lengthMin: 480 });
+    await buildDay(worker, "2026-03-03");
+    const client = await as(site.organizationId, "officer");
+    const { body } = await client.get(`/workers/${worker.id}/days`);
+    expect(
+      body.rows.map((day: { date: string; endsAt: string | null }) => [day.date, day.endsAt]),
+    ).toEqual([
+      ["2026-03-03", null],
+      ["2026-03-02", "2026-03-03T06:00:00.000Z"],
+      ["2026-03-01", null],
+    ]);
   });
 
   test("a worker sees self and nobody else", async () => {

@@ -1,5 +1,6 @@
 import {
   infiniteQueryOptions,
+  type QueryClient,
   queryOptions,
   useMutation,
   useQueryClient,
@@ -15,7 +16,7 @@ import {
   FollowUpView,
   MeasureView,
 } from "../../../shared/schemas/follow-up";
-import { api } from "../../lib/api";
+import { ApiError, api } from "../../lib/api";
 
 export interface FindingListFilter {
   readonly state?: "open" | "closed" | "all" | "done";
@@ -72,13 +73,21 @@ export function useFindingStep(id: string) {
       }),
     onSuccess: async (finding) => {
       client.setQueryData(findingQueries.one(id).queryKey, finding);
-      await Promise.all([
-        client.invalidateQueries({ queryKey: [...findingQueries.all, "list"] }),
-        client.invalidateQueries({ queryKey: ["waiting"] }),
-      ]);
+      await refreshLists(client);
+    },
+    // Somebody was quicker: the lists still show the finding as it was.
+    onError: (error) => {
+      if (error instanceof ApiError && (error.status === 409 || error.status === 412))
+        void refreshLists(client);
     },
   });
 }
+
+const refreshLists = (client: QueryClient) =>
+  Promise.all([
+    client.invalidateQueries({ queryKey: [...findingQueries.all, "list"] }),
+    client.invalidateQueries({ queryKey: ["waiting"] }),
+  ]);
 
 /** What hangs on a finding was changed: it is asked for again. */
 export function useFollowUpChanged(id: string) {

@@ -51,16 +51,16 @@ const view = (overrides: Partial<FindingView> = {}): FindingView =>
 const reply = (status: number, body: unknown) =>
   new Response(JSON.stringify(body), { status, headers: { "content-type": "application/json" } });
 
-function show(finding: FindingView) {
+function show(finding: FindingView): QueryClient {
+  const client = new QueryClient({ defaultOptions: { mutations: { networkMode: "always" } } });
   render(
     <TestLanguage>
-      <QueryClientProvider
-        client={new QueryClient({ defaultOptions: { mutations: { networkMode: "always" } } })}
-      >
+      <QueryClientProvider client={client}>
         <StepForm finding={finding} />
       </QueryClientProvider>
     </TestLanguage>,
   );
+  return client;
 }
 
 test("the steps are those of the state and of what the reader may do", () => {
@@ -105,13 +105,21 @@ test("closing needs a reason", async () => {
   expect(fetched).not.toHaveBeenCalled();
 });
 
-test("a stale step shows both versions; it goes again over the revision that stands", async () => {
+/** jsdom has no dialogs. */
+function allowDialogs() {
   HTMLDialogElement.prototype.showModal = function showModal(this: HTMLDialogElement) {
     this.open = true;
   };
   HTMLDialogElement.prototype.close = function close(this: HTMLDialogElement) {
     this.open = false;
   };
+}
+
+const stale = (current: FindingView) =>
+  reply(412, { code: "stale", status: 412, title: "stale", params: {}, issues: [], current });
+
+test("a stale step shows both versions; it goes again over the revision that stands", async () => {
+  allowDialogs();
   const current = view({
     revision: 2,
     state: "in-hand",
@@ -129,9 +137,7 @@ test("a stale step shows both versions; it goes again over the revision that sta
   });
   const fetched = vi
     .fn()
-    .mockResolvedValueOnce(
-      reply(412, { code: "stale", status: 412, title: "stale", params: {}, issues: [], current }),
-    )
+    .mockResolvedValueOnce(stale(current))
     .mockResolvedValueOnce(reply(201, view({ revision: 3, state: "done" })));
   vi.stubGlobal("fetch", fetched);
   show(view());
@@ -147,4 +153,52 @@ test("a stale step shows both versions; it goes again over the revision that sta
   expect(new Headers(second.headers).get("if-match")).toBe("2");
   expect(JSON.parse(String(second.body))).toEqual({ kind: "mark-done", text: "has Fenmuff low" });
   expect(await screen.findByText("Mark done: saved")).toBeDefined();
+});
+
+test("a step on a finding that was closed meanwhile says by whom, is not offered again, and its words may be a comment", async () => {
+  allowDialogs();
+  const closing = {
+    id,
+    kind: "state",
+    fromState: "new",
+    toState: "closed",
+    text: "moved to another line",
+    authorName: "Y. Halloran",
+    at: "2026-12-01T13:39:00Z",
+  } as const;
+  const current = view({ revision: 2, state: "closed", steps: [closing] });
+  const fetched = vi
+    .fn()
+    .mockResolvedValueOnce(stale(current))
+    .mockResolvedValueOnce(reply(201, view({ revision: 3, state: "closed" })));
+  vi.stubGlobal("fetch", fetched);
+  const client = show(view());
+  client.setQueryData(["waiting", "all"], {});
+  const user = userEvent.setup();
+  await user.click(screen.getByRole("button", { name: "Mark done" }));
+  await user.type(screen.getByRole("textbox", { name: /What was done/ }), "has Fenmuff low");
+  await user.click(screen.getAllByRole("button", { name: "Mark done" })[1]!);
+  expect(await screen.findByText("This finding was closed meanwhile")).toBeDefined();
+  expect(
+    screen.getByText(/^\u2068?Y\. Halloran\u2069? closed it\. Nothing of yours was sent/),
+  ).toBeDefined();
+  expect(screen.queryByRole("button", { name: "Mark done all the same" })).toBeNull();
+  expect(client.getQueryState(["waiting", "all"])?.isInvalidated).toBe(true);
+  await user.click(screen.getByRole("button", { name: "Pass the words on as a comment" }));
+  expect(await screen.findByText("Comment: saved")).toBeDefined();
+  const [, second] = fetched.mock.calls[1] as [string, RequestInit];
+  expect(JSON.parse(String(second.body))).toEqual({ kind: "comment", text: "has Fenmuff low" });
+});
+
+test("what was saved meanwhile is what the page shows from then on", async () => {
+  allowDialogs();
+  const current = view({ revision: 2, state: "closed" });
+  vi.stubGlobal("fetch", vi.fn().mockResolvedValueOnce(stale(current)));
+  const client = show(view());
+  const user = userEvent.setup();
+  await user.click(screen.getByRole("button", { name: "Mark done" }));
+  await user.click(screen.getAllByRole("button", { name: "Mark done" })[1]!);
+  expect(await screen.findByText(/^The program closed it\./)).toBeDefined();
+  await user.click(screen.getByRole("button", { name: "Keep what was saved" }));
+  expect(client.getQueryData(["findings", "one", id])).toMatchObject({ state: "closed" });
 });

@@ -1,5 +1,6 @@
+import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
-import { useQuery } from "@tanstack/react-query";
+import { useQuery, useQueryClient } from "@tanstack/react-query";
 import { type KeyboardEvent, useRef, useState } from "react";
 import { z } from "zod";
 import { findingStateWord } from "../../../shared/findings/words";
@@ -110,9 +111,9 @@ export function StepForm({ finding }: { finding: FindingView }) {
           kind={current}
           label={labels[current]}
           finding={finding}
-          onDone={() => {
+          onDone={(kind) => {
             setChosen(null);
-            setSaved(i18n.t("{step}: saved", { step: labels[current] }));
+            setSaved(i18n.t("{step}: saved", { step: labels[kind] }));
             moveFocus("button");
           }}
           onCancel={() => {
@@ -136,7 +137,8 @@ interface StepProps {
   kind: StepKind;
   label: string;
   finding: FindingView;
-  onDone: () => void;
+  /** Told which step was saved: a comment may have gone in place of one that came too late. */
+  onDone: (kind: StepKind) => void;
   onCancel: () => void;
 }
 
@@ -146,7 +148,11 @@ function Step(props: StepProps) {
   return <TextForm {...props} kind={props.kind} />;
 }
 
+const mayTake = (kind: FindingStepInput["kind"], { state }: FindingView): boolean =>
+  kind !== "undo" && STEPS_FROM[kind].includes(state);
+
 function useSend({ finding, onDone }: StepProps) {
+  const client = useQueryClient();
   const send = useFindingStep(finding.id);
   const key = useRef(newChangeKey());
   const [current, setCurrent] = useState<FindingView | null>(null);
@@ -156,24 +162,34 @@ function useSend({ finding, onDone }: StepProps) {
     error: send.error,
     current,
     forget: () => setCurrent(null),
-    /** Again after a conflict, from the revision that stands now. */
-    again: () => body && current && submit(body, current.revision, () => undefined),
+    /** What was to be sent, as long as the step may still be taken from the state that stands now. */
+    again:
+      body && current && mayTake(body.kind, current)
+        ? () => submit(body, current.revision, () => undefined)
+        : null,
+    /** The words of a step that can't be taken any more go as a comment; null where there are none. */
+    asComment:
+      body && current && "text" in body && body.text !== "" && mayTake("comment", current)
+        ? () => submit({ kind: "comment", text: body.text }, current.revision, () => undefined)
+        : null,
+    /** The page shows the finding as it stands now. */
+    takeSaved: () => {
+      if (current) client.setQueryData(findingQueries.one(finding.id).queryKey, current);
+    },
     submit,
   };
 
   function submit(step: FindingStepInput, revision: number, onIssues: (error: unknown) => void) {
     setBody(step);
-    send.mutate(
-      { body: step, revision, key: key.current },
-      {
-        onSuccess: onDone,
-        onError: (error) => {
-          // The same change goes again under the same key only where nobody knows whether it arrived.
-          if (!(error instanceof ApiError) || error.status !== 0) key.current = newChangeKey();
-          const saved = savedMeanwhile(error, FindingView);
-          if (saved) setCurrent(saved);
-          else onIssues(error);
-        },
+    // A promise, as the form may be gone once the finding has its new state.
+    send.mutateAsync({ body: step, revision, key: key.current }).then(
+      () => step.kind !== "undo" && onDone(step.kind),
+      (error: unknown) => {
+        // The same change goes again under the same key only where nobody knows whether it arrived.
+        if (!(error instanceof ApiError) || error.status !== 0) key.current = newChangeKey();
+        const saved = savedMeanwhile(error, FindingView);
+        if (saved) setCurrent(saved);
+        else onIssues(error);
       },
     );
   }
@@ -298,6 +314,13 @@ function StepEnd({
   const { i18n } = useLingui();
   const locale = useLocale();
   const isConflict = send.error instanceof ApiError && send.error.status === 412;
+  const { again, asComment, current } = send;
+  const isClosed = current?.state === "closed";
+  const leave = () => {
+    send.takeSaved();
+    send.forget();
+    onCancel();
+  };
   return (
     <>
       {!isConflict && <FormProblem error={send.error} />}
@@ -306,30 +329,44 @@ function StepEnd({
         <Button onClick={onCancel}>{i18n.t("Leave it")}</Button>
       </FormActions>
       <Dialog
-        isOpen={send.current !== null}
+        isOpen={current !== null}
         onClose={send.forget}
-        title={i18n.t("Someone saved this finding before you")}
-        lead={i18n.t("Nothing of yours is lost; choose what stands.")}
+        title={
+          isClosed
+            ? i18n.t("This finding was closed meanwhile")
+            : i18n.t("Someone saved this finding before you")
+        }
+        lead={
+          again
+            ? i18n.t("Nothing of yours is lost; choose what stands.")
+            : current && tooLateText(i18n, current)
+        }
         actions={
           <>
-            <Button
-              kind="primary"
-              isBusy={send.isPending}
-              onClick={() => {
-                send.forget();
-                send.again();
-              }}
-            >
-              {i18n.t("{step} all the same", { step: label })}
-            </Button>
-            <Button
-              onClick={() => {
-                send.forget();
-                onCancel();
-              }}
-            >
-              {i18n.t("Keep what was saved")}
-            </Button>
+            {again && (
+              <Button
+                kind="primary"
+                isBusy={send.isPending}
+                onClick={() => {
+                  send.forget();
+                  again();
+                }}
+              >
+                {i18n.t("{step} all the same", { step: label })}
+              </Button>
+            )}
+            {!again && asComment && (
+              <Button
+                isBusy={send.isPending}
+                onClick={() => {
+                  send.forget();
+                  asComment();
+                }}
+              >
+                {i18n.t("Pass the words on as a comment")}
+              </Button>
+            )}
+            <Button onClick={leave}>{i18n.t("Keep what was saved")}</Button>
           </>
         }
       >
@@ -370,6 +407,20 @@ function StepEnd({
       </Dialog>
     </>
   );
+}
+
+/** Who closed it, and that the step was not taken. */
+function tooLateText(i18n: I18n, { state, steps }: FindingView): string {
+  const name = steps.findLast(({ toState }) => toState === state)?.authorName;
+  if (state !== "closed")
+    return i18n.t(
+      "This can’t be done any more in the state it is in now. Nothing of yours was sent.",
+    );
+  return name
+    ? i18n.t("{name} closed it. Nothing of yours was sent; the lists are brought up to date.", {
+        name,
+      })
+    : i18n.t("The program closed it. Nothing of yours was sent; the lists are brought up to date.");
 }
 
 function lastStep({ steps }: FindingView): string {

@@ -143,6 +143,7 @@ export function DrawingLanes({
   editing,
   taskNames,
   span,
+  widthPx,
   rightPx,
 }: LaneProps & {
   history: HistoryView;
@@ -162,6 +163,7 @@ export function DrawingLanes({
       openKey={editing.open?.key ?? null}
       pending={editing.open?.key === null ? editing.open : null}
       word={editing.word}
+      widthPx={widthPx}
       rightPx={rightPx}
       onChange={editing.onChange}
       onOpen={editing.openOf}

@@ -1,5 +1,13 @@
 import { useLingui } from "@lingui/react";
-import { type KeyboardEvent, type PointerEvent, useEffect, useId, useRef, useState } from "react";
+import {
+  type CSSProperties,
+  type KeyboardEvent,
+  type PointerEvent,
+  useEffect,
+  useId,
+  useRef,
+  useState,
+} from "react";
 import { formatMinutes } from "../../../shared/format/duration";
 import { useLocale } from "../../lib/i18n";
 import { LEFT_PX, RIGHT_PX } from "./chart-canvas";
@@ -17,13 +25,29 @@ import {
   stretchBetween,
 } from "./history-stretches";
 import { rangeText, stretchName } from "./history-words";
+import { nameRows } from "./name-rows";
 
 /** So near an end of a bracket one takes hold of the end. */
 const GRIP_PX = 9;
 /** A pointer that moved less only pressed. */
 const SLIP_PX = 4;
+/** Of names under tasks: more than a letter's mean width, and what stays free between two, in parts of the page's letters. */
+const LETTER_REM = 0.44;
+const NAME_GAP_REM = 0.5;
+/** Left of a name within its bracket. */
+const NAME_INSET_PX = 3;
+/** With more rows the lane would be a list, and that stands beneath anyway. */
+const MOST_NAME_ROWS = 4;
 const STEP_S = 60;
 const LONG_STEP_S = 600;
+
+/** How far a name may reach: a reason up to the next one, a task's name in its row. */
+interface NameStyle {
+  "--room": string;
+  "--name-row": number;
+  "--name-left": string;
+  "--name-room": string;
+}
 
 interface Hold {
   readonly kind: "draw" | "move" | Edge;
@@ -47,6 +71,7 @@ export interface LanesProps {
   readonly pending: (Span & { readonly kind: StretchKind }) | null;
   /** What just happened to a bracket, said elsewhere to those who hear it. */
   readonly word: string;
+  readonly widthPx: number;
   readonly rightPx: number;
   /** `isDone`: the hand let go; until then it only shows where it would stand. */
   readonly onChange: (placed: Placed, isDone: boolean) => void;
@@ -86,6 +111,7 @@ function Lane({
   canChange,
   openKey,
   pending,
+  widthPx,
   rightPx,
   onChange,
   onOpen,
@@ -223,10 +249,37 @@ function Lane({
     .filter((one) => one.kind === kind && one.toS > span.fromS && one.fromS < span.toS)
     .toSorted((a, b) => a.fromS - b.fromS);
 
+  const names = seen.map((one) => stretchName(i18n, one, taskNames));
+  const rooms = kind === "task" ? nameRooms() : [];
+  const rowsCount = Math.max(1, ...rooms.map((room) => (room ? room.row + 1 : 1)));
+
+  /** Where each task's name stands, as it may be longer than its bracket; null where it finds no room. */
+  function nameRooms(): ({ x: number; row: number; from: number } | null)[] {
+    const remPx = Number.parseFloat(getComputedStyle(document.documentElement).fontSize) || 16;
+    const plotPx = Math.max(1, widthPx - LEFT_PX - rightPx);
+    const asked = seen.map(({ fromS }, index) => ({
+      from: (plotPx * (Math.max(fromS, span.fromS) - span.fromS)) / spanS + NAME_INSET_PX,
+      text: names[index]!,
+    }));
+    const room = { letter: LETTER_REM * remPx, gap: NAME_GAP_REM * remPx, width: plotPx };
+    return nameRows(asked, room).map(({ x, row }, index) =>
+      row < MOST_NAME_ROWS ? { x, row, from: asked[index]!.from } : null,
+    );
+  }
+  const nameStyle = (index: number): NameStyle => {
+    const room = rooms[index];
+    return {
+      "--room": roomFor(seen[index]!, seen[index + 1]),
+      "--name-row": room?.row ?? 0,
+      "--name-left": `${NAME_INSET_PX + (room ? room.x - room.from : 0)}px`,
+      "--name-room": room ? `${names[index]!.length * LETTER_REM}rem` : "0px",
+    };
+  };
+
   const ghost = draft ?? (pending?.kind === kind ? pending : null);
 
   return (
-    <div className={`shift-lane is-${kind}`}>
+    <div className={`shift-lane is-${kind}`} style={{ "--name-rows": rowsCount } as CSSProperties}>
       {/* biome-ignore lint/a11y/useSemanticElements: brackets are buttons, not fields */}
       <div
         className={`shift-track${canChange ? " can-draw" : ""}`}
@@ -242,7 +295,7 @@ function Lane({
         onPointerCancel={letGo}
       >
         {seen.map((one, index) => {
-          const name = stretchName(i18n, one, taskNames);
+          const name = names[index]!;
           const minutes = formatMinutes((one.toS - one.fromS) / 60, locale);
           const range = rangeText(clock, one);
           return (
@@ -251,7 +304,7 @@ function Lane({
               bracketKey={one.key}
               className={`bracket is-${kind}${one.key === openKey ? " is-open" : ""}`}
               cut={{ from: one.fromS < span.fromS, to: one.toS > span.toS }}
-              style={{ ...place(one), "--room": roomFor(one, seen[index + 1]) }}
+              style={{ ...place(one), ...nameStyle(index) }}
               label={i18n.t("{name}, {range}, {minutes} min", { name, range, minutes })}
               hintId={hintId}
               onKeyDown={(event) => onBracketKey(event, one)}
@@ -297,7 +350,7 @@ function Bracket({
   className: string;
   /** Ends that lie beyond what is seen. */
   cut: Readonly<Record<Edge, boolean>>;
-  style: { left: string; width: string; "--room": string };
+  style: { left: string; width: string } & NameStyle;
   label: string;
   hintId: string;
   onKeyDown: (event: KeyboardEvent) => void;

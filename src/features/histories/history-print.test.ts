@@ -1,24 +1,10 @@
 import { describe, expect, test } from "vitest";
 import { testI18n } from "../../lib/test-i18n";
 import { doseAxisTopPct, doseLook, dosePlace, doseTicks } from "./dose-axis";
-import { inLines, nameRows } from "./history-print";
+import { inLines } from "./history-print";
 import { lengthText } from "./history-words";
 
-describe("names under the brackets on paper", () => {
-  const texts = ["Fettling of castings", "Chipping", "Loading", "Grinding with the angle grinder"];
-
-  test("never stand over one another, and never past the edge", () => {
-    const names = [10, 14, 300, 660].map((from, index) => ({ from, text: texts[index] ?? "" }));
-    const places = nameRows(names);
-    expect(places[0]?.row).toBe(0);
-    expect(places[1]?.row).toBe(1);
-    expect(places[2]?.row).toBe(0);
-    for (const [index, { x }] of places.entries()) {
-      expect(x).toBeGreaterThanOrEqual(0);
-      expect(x + (texts[index] ?? "").length * 4.6).toBeLessThanOrEqual(680);
-    }
-  });
-
+describe("names beside the picture on paper", () => {
   test("a long name goes on in the next line", () => {
     expect(inLines("1,160 % Recommended exposure limit, 85", 24)).toEqual([
       "1,160 % Recommended",

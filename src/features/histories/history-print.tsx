@@ -9,6 +9,7 @@ import { clockTicks, type HistoryClock } from "./history-clock";
 import type { Drawn } from "./history-stretches";
 import { criterionText, stretchName } from "./history-words";
 import { CHANNEL_SYMBOL } from "./import-words";
+import { nameRows } from "./name-rows";
 
 const WIDTH = 680;
 const LEFT = 34;
@@ -25,21 +26,6 @@ const NAME_GAP = 6;
 
 /** Places on the paper, short enough for thousands of them. */
 const tenths = (place: number) => Math.round(place * 10) / 10;
-
-/** Names under their brackets in as many rows as it takes that none stands over another, none past the edge. */
-export function nameRows(
-  names: readonly { from: number; text: string }[],
-): { x: number; row: number }[] {
-  const ends: number[] = [];
-  return names.map(({ from, text }) => {
-    const width = text.length * LETTER;
-    const x = Math.max(0, Math.min(from, WIDTH - width));
-    const free = ends.findIndex((end) => end + NAME_GAP <= x);
-    const row = free === -1 ? ends.length : free;
-    ends[row] = x + width;
-    return { x, row };
-  });
-}
 
 /** A text in lines of so many letters, broken between words. */
 export function inLines(text: string, letters: number): string[] {
@@ -125,6 +111,7 @@ export const HistoryPrint = memo(function HistoryPrint({
     );
     const places = nameRows(
       stretches.map((one, index) => ({ from: x(one.fromS), text: names[index]! })),
+      { letter: LETTER, gap: NAME_GAP, width: WIDTH },
     );
     const rowCount = Math.max(0, ...places.map(({ row }) => row + 1));
     return { stretches, names, places, height: rowCount === 0 ? 0 : 12 + LINE * rowCount };

@@ -1,7 +1,7 @@
 import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { lazy, Suspense } from "react";
-import { formatDay } from "../../../shared/format/date";
+import { formatDay, formatTime } from "../../../shared/format/date";
 import { formatLimit, formatWholeLevel } from "../../../shared/format/level";
 import { startsSentence } from "../../../shared/format/words";
 import type { Locale } from "../../../shared/i18n/index";
@@ -80,6 +80,40 @@ export function lastShiftSentence(i18n: I18n, locale: Locale, day: OwnDay): stri
   );
 }
 
+/**
+ * Of days, latest first: the last one whose shift is over, and before it those of shifts that are written down but not
+ * over. A day of unknown hours counts as over.
+ */
+export function lastFinished(
+  days: readonly OwnDay[],
+  now: Date,
+): { finished: OwnDay | null; running: readonly OwnDay[] } {
+  const isOver = ({ endsAt }: OwnDay) => endsAt === null || Date.parse(endsAt) <= now.getTime();
+  const finished = days.find(isOver) ?? null;
+  return { finished, running: finished ? days.slice(0, days.indexOf(finished)) : days };
+}
+
+/** A shift that was written down before its end: until when it lasts, and that nothing is told of it yet. */
+export function notOverSentence(
+  i18n: I18n,
+  locale: Locale,
+  { date, endsAt }: OwnDay,
+  { timeZone, today }: { timeZone: string; today: string },
+): string {
+  const until = endsAt === null ? "" : formatTime(endsAt, timeZone);
+  return date === today
+    ? i18n.t("Your shift until {until} today is not over. Its figures stand here afterwards.", {
+        until,
+      })
+    : i18n.t(
+        "Your shift of {day}, until {until}, is not over. Its figures stand here afterwards.",
+        {
+          day: formatDay(date, locale),
+          until,
+        },
+      );
+}
+
 const hasLoudMoment = ({ kindsOver }: OwnDay) =>
   kindsOver.includes("peak") || kindsOver.includes("ceiling");
 
@@ -88,21 +122,34 @@ const OwnSaid = lazy(() => import("./own-said").then(({ OwnSaid }) => ({ default
 
 export function LastShift({
   day,
+  running,
   workerId,
   askedFor,
   today,
+  timeZone,
 }: {
+  /** The last one that is over. */
   day: OwnDay | null;
+  /** Those written down whose shift is not over. */
+  running: readonly OwnDay[];
   workerId: string;
   /** The date for which the head of the page asks how long the protector was worn. */
   askedFor: string | undefined;
   today: string;
+  timeZone: string;
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
+  const notOver = running.map((one) => (
+    <p key={one.date} className="me-note">
+      {notOverSentence(i18n, locale, one, { timeZone, today })}
+    </p>
+  ));
+  if (!day && running.length > 0) return notOver;
   if (!day) return <Empty title={i18n.t("No shift of yours is recorded yet.")} />;
   return (
     <>
+      {notOver}
       <p>
         <Emphasis text={startsSentence(lastShiftSentence(i18n, locale, day))} />
       </p>

@@ -1,7 +1,7 @@
 import { describe, expect, test } from "vitest";
 import type { FitTestView } from "../../../shared/schemas/fit";
 import { testI18n } from "../../lib/test-i18n";
-import { lastShiftSentence } from "./last-shift";
+import { lastFinished, lastShiftSentence, notOverSentence } from "./last-shift";
 import { fitOfOwn, ownFitSentence } from "./own-fit";
 import { ownFrame } from "./own-frame";
 import type { OwnProtector } from "./own-protectors";
@@ -35,6 +35,7 @@ const day = (facts: Partial<OwnDay> = {}): OwnDay => ({
   governingCriteria: [],
   shiftMin: 480,
   isStale: false,
+  endsAt: "2026-11-30T14:00:00.000Z",
   limit: { levelDb: 87, isAtEar: true },
   kindsOver: ["action"],
   wordsByUse: [],
@@ -336,5 +337,35 @@ describe("whether it fits, in a sentence", () => {
       expect(say([testOf({ needDb: -3, hasPassed })])).toBe(
         "Tested on you on 12 October 2026. Your noise asks nothing of it, so there is nothing to pass.",
       );
+  });
+});
+
+describe("the last shift is the last one that is over", () => {
+  const now = new Date("2026-11-30T11:00:00Z");
+  const before = day({ date: "2026-11-27", endsAt: "2026-11-27T14:00:00.000Z" });
+  const today = day();
+
+  test("one that is written down before its end is not told as the last", () => {
+    expect(lastFinished([today, before], now)).toEqual({ finished: before, running: [today] });
+    expect(lastFinished([today], now)).toEqual({ finished: null, running: [today] });
+    expect(lastFinished([today, before], new Date("2026-11-30T14:00:00Z"))).toEqual({
+      finished: today,
+      running: [],
+    });
+  });
+
+  test("without hours there is no guess; without days there is nothing", () => {
+    const imported = day({ endsAt: null });
+    expect(lastFinished([imported, before], now)).toEqual({ finished: imported, running: [] });
+    expect(lastFinished([], now)).toEqual({ finished: null, running: [] });
+  });
+
+  test("until when it lasts is said by the site's clock; a night's shift with its day", () => {
+    const say = (date: string) =>
+      notOverSentence(testI18n(), "en", today, { timeZone: "Europe/Berlin", today: date });
+    expect(say("2026-11-30")).toMatch(/^Your shift until 15:00 today is not over\./);
+    expect(say("2026-12-01")).toMatch(
+      /^Your shift of Monday 30 November, until 15:00, is not over\./,
+    );
   });
 });
