@@ -67,6 +67,8 @@ async function slipsAt(siteId: string, people: readonly PersonRow[]): Promise<Is
   const date = todayAt(people[0]!.timeZone);
   const settings = await settingsInForce(siteId, date);
   const { governing } = settings;
+  const { adequacy, targetDb } = governing.protection;
+  const isByTask = adequacy === "en-458";
   const ids = `{${people.map(({ id }) => id).join(",")}}`;
   const assignments = groupBy(await assignmentsOn(ids, date), ({ workerId }) => workerId);
   const devices = groupBy(await devicesOn(ids, date), ({ workerId }) => workerId);
@@ -121,11 +123,11 @@ async function slipsAt(siteId: string, people: readonly PersonRow[]): Promise<Is
       context,
     );
     const timed = input.shifts.flatMap((shift) => shift.tasks);
-    const atEar = evaluateDay(input, governing, []).tasks;
+    const day = evaluateDay(input, governing, []);
     const worn = timed.flatMap((task, index) => {
       const known = context.tasks.get(task.taskId);
       const assignment = known ? assignmentFor(known, own) : null;
-      const found = atEar[index];
+      const found = day.tasks[index];
       return assignment && found?.isWorn
         ? [{ assignmentId: assignment.id, taskName: task.name, ...found }]
         : [];
@@ -147,7 +149,7 @@ async function slipsAt(siteId: string, people: readonly PersonRow[]): Promise<Is
       date,
       ruleSetKey: governing.key,
       ruleSetVersion: governing.version,
-      actionDb: governing.protection.adequacy === "en-458" ? governing.protection.targetDb : null,
+      actionDb: isByTask ? targetDb : null,
       protectors: (devices.get(person.id) ?? []).map(({ workerId: _, innerName, ...device }) => {
         const task = worstOf(device.assignmentId);
         const known = own.find(({ id }) => id === device.assignmentId);
@@ -157,7 +159,7 @@ async function slipsAt(siteId: string, people: readonly PersonRow[]): Promise<Is
           taskName: task?.taskName ?? null,
           outsideDb: task?.outsideDb ?? null,
           wornDb: task?.wornDb ?? null,
-          word: task?.word ?? null,
+          word: (task && (isByTask ? task.word : day.word)) ?? null,
           batteryMin: known
             ? shortest(
                 [known.innerModelId, known.outerModelId].map(

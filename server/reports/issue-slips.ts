@@ -151,7 +151,15 @@ function devices(i18n: I18n, locale: Locale, { protectors, actionDb }: IssueSlip
           isStrong: "first line",
           lines: [
             device.word === null ? i18n.t("Not assessed") : protectorWordText(i18n, device.word),
-            ...(device.taskName === null ? [] : [isolate(device.taskName)]),
+            ...(device.taskName === null
+              ? []
+              : [
+                  actionDb === null && device.word !== null
+                    ? i18n.t("over the shift; loudest in {task}", {
+                        task: isolate(device.taskName),
+                      })
+                    : isolate(device.taskName),
+                ]),
           ],
         },
       ]),

@@ -156,7 +156,7 @@ export const IssueSlip = z.object({
       kind: z.string(),
       outerKind: z.string().nullable(),
       useName: z.string().nullable(),
-      /** The task that decides its word; null: none of its use is in noise. */
+      /** The task that decides its word, where the rule judges the shift the loudest; null: none of its use is in noise. */
       taskName: z.string().nullable(),
       outsideDb: z.number().nullable(),
       wornDb: z.number().nullable(),

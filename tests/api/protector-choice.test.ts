@@ -282,6 +282,27 @@ test("a slip has each protector with its worst task, fit and crew; another organ
   expect(refused.status).toBe(404);
 });
 
+test("where the rule judges the shift, a slip's word is the shift's with the protector on", async () => {
+  const site = await buildSite({ governingRuleSet: "us-general-industry" });
+  const { organizationId } = site;
+  const task = await buildTask({ site, name: "Loud", levelDb: 100, metric: { kind: "steady" } });
+  const job = await buildJob({ site, tasks: [{ taskId: task.id, durationMin: 480 }] });
+  const wears = async (usRatingDb: number) => {
+    const worker = await buildWorker({ site, jobId: job.id });
+    const inner = await buildProtector({ organizationId, data: { snrDb: null, usRatingDb } });
+    await buildAssignment({ worker, inner });
+    return worker.id;
+  };
+  // 1910.95 App. B: 100 − (29 − 7) = 78 and 100 − (12 − 7) = 95, to be at or below 90 over eight hours.
+  const ids = [await wears(29), await wears(12)];
+  const client = await officerAt(site);
+  const { body } = await client.get(`/issue-slips?workerIds=${ids.join(",")}`);
+  expect((body.rows as IssueSlip[]).map(({ protectors: [device] }) => device)).toMatchObject([
+    { taskName: "Loud", wornDb: 78, word: "enough" },
+    { taskName: "Loud", wornDb: 95, word: "too-little" },
+  ]);
+});
+
 test("of two worn together a slip has both kinds, and what is due on either", async () => {
   const site = await buildSite();
   const { organizationId } = site;
