@@ -5,7 +5,7 @@ import { todayAt } from "../lib/calendar";
 import { rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
 import { crewPolicy, noticePolicy, programmePolicy, sitePolicy } from "../policies";
-import { isAbsentOn, isLentOn } from "./attendance";
+import { PROGRESS_COLUMNS } from "./crew-progress";
 import { findNotices, summarize } from "./entry-notices";
 import { listFindings } from "./finding-view";
 import { lettersWaiting } from "./letters";
@@ -41,11 +41,7 @@ export async function waitingFor(
   }));
   const crews = await rows<CrewRow>(
     `SELECT c.id, c.name, c.site_id AS "siteId", s.time_zone AS "timeZone", x.date::text AS date, (${nextShiftSql("c.id", "x.date")})::text AS "nextDate", to_char(c.usual_start, 'HH24:MI') AS start, c.usual_length_min AS "lengthMin",
-       (SELECT count(*)::int FROM crew_memberships m JOIN workers w ON w.id = m.worker_id
-        WHERE m.crew_id = c.id AND m.valid @> x.date AND (w.left_on IS NULL OR w.left_on >= x.date) AND NOT ${isLentOn("m", "x.date")}) AS members,
-       (SELECT count(*)::int FROM shifts f WHERE f.crew_id = c.id AND f.date = x.date AND NOT f.is_void) AS saved,
-       (SELECT count(*)::int FROM crew_memberships m WHERE m.crew_id = c.id AND m.valid @> x.date
-        AND NOT ${isLentOn("m", "x.date")} AND ${isAbsentOn("m.worker_id", "x.date")}) AS absent
+       ${PROGRESS_COLUMNS("c.id", "x.date")}
      FROM crews c JOIN sites s ON s.id = c.site_id JOIN jsonb_to_recordset(CAST(:days AS jsonb)) AS x("siteId" uuid, date date) ON x."siteId" = c.site_id
      WHERE NOT c.is_archived AND ${visible(crewPolicy, actor, "c")} ORDER BY c.usual_start, c.name`,
     { days: JSON.stringify(days) },

@@ -13,7 +13,15 @@ import { may, noticePolicy } from "../policies";
 import { entryNotices } from "../queries/entry-notices";
 
 const EntryParams = z.object({ entryId: z.uuid() });
-const EntryAction = z.object({ action: NoticeAction });
+const EntryAction = z.discriminatedUnion("action", [
+  // Told in another way is one person each time.
+  z.object({ action: NoticeAction.extract(["give-on-paper"]), noticeId: z.uuid() }),
+  z.object({
+    action: NoticeAction.exclude(["give-on-paper"]),
+    /** Only this one of the entry's notices; null: all of them. */
+    noticeId: z.uuid().nullable().default(null),
+  }),
+]);
 
 /** The notices of an entry, if they are this officer's to see and handle. */
 async function noticesOf(actor: Actor, entryId: string): Promise<string[]> {
@@ -51,7 +59,10 @@ export function defineNoticeRoutes(config: Pick<Config<"web">, "PUBLIC_URL">): v
       reply: EntryNotices,
     },
     async ({ actor, params, body }) => {
-      await handleNotices(actor, await noticesOf(actor, params.entryId), body.action);
+      const all = await noticesOf(actor, params.entryId);
+      const asked = all.filter((id) => body.noticeId === null || id === body.noticeId);
+      if (asked.length === 0) throw notFound();
+      await handleNotices(actor, asked, body.action);
       return entryNotices(params.entryId);
     },
   );

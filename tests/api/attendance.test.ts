@@ -2,6 +2,7 @@ import { describe, expect, test } from "vitest";
 import {
   buildCrew,
   buildJob,
+  buildShift,
   buildSite,
   buildTask,
   buildUser,
@@ -232,6 +233,42 @@ describe("a supervisor's own people", () => {
     expect((await their.get(`/crews/${other.id}/attendance`)).body.absences).toMatchObject([
       { fromDate: today, toDate: until, canChange: false },
     ]);
+  });
+
+  test("whoever is lent away after the day was saved takes nobody else out of the count", async () => {
+    const site = await buildSite({ timeZone: "UTC" });
+    const people = [
+      await buildWorker({ site }),
+      await buildWorker({ site }),
+      await buildWorker({ site }),
+    ];
+    const [lent, absent] = people;
+    const crew = await buildCrew({ site, members: people });
+    const other = await buildCrew({ site });
+    await buildShift(lent!, { date: today, crewId: crew.id });
+    await select(
+      "INSERT INTO crew_memberships (organization_id, crew_id, worker_id, valid, is_loan) VALUES ($1, $2, $3, $4, TRUE)",
+      [site.organizationId, other.id, lent!.id, `[${today},${daysFromToday(2)})`],
+    );
+    await select(
+      "INSERT INTO absences (organization_id, crew_id, worker_id, date) VALUES ($1, $2, $3, $4)",
+      [site.organizationId, crew.id, absent!.id, today],
+    );
+    const officer = await buildUser({ organizationId: site.organizationId, roles: ["officer"] });
+    const client = await signInAs(officer);
+    // Three people: one entered, one not in, one who waits; and the borrowing crew waits for the one lent.
+    const counts = { members: 3, saved: 1, absent: 1 };
+    const waiting = await client.get("/waiting");
+    expect(waiting.body.crews.find(({ id }: { id: string }) => id === crew.id)).toMatchObject(
+      counts,
+    );
+    expect(waiting.body.crews.find(({ id }: { id: string }) => id === other.id)).toMatchObject({
+      members: 1,
+      saved: 0,
+      absent: 0,
+    });
+    const days = await client.get(`/crews/${crew.id}/days?from=${today}&to=${today}`);
+    expect(days.body.rows).toMatchObject([{ date: today, ...counts }]);
   });
 
   test("only to a crew in use of the same site, of one's own members", async () => {

@@ -197,7 +197,10 @@ describe("a mail server that accepts and then bounces", () => {
     await select("UPDATE notices SET state = 'sent' WHERE id = $1", [noticeId]);
     await report(signed(bounceOf((await state()).message_id)));
     const client = await signInAs(officer);
-    await client.post(`/entries/${entryId}/notices/actions`, { action: "give-on-paper" });
+    await client.post(`/entries/${entryId}/notices/actions`, {
+      action: "give-on-paper",
+      noticeId,
+    });
     expect((await state()).state).toBe("on-paper");
     expect((await client.get("/waiting")).body.troubled).toEqual([]);
     const actions = await select<{ action: string }>(

@@ -1,3 +1,4 @@
+import { randomUUID } from "node:crypto";
 import { afterEach, describe, expect, inject, test } from "vitest";
 import { readConfig } from "../../server/config";
 import { lookAfter } from "../../server/jobs/look-after";
@@ -127,6 +128,27 @@ describe("the outbox", () => {
     const again = await client.post(`/entries/${entryId}/notices/actions`, { action: "hold" });
     expect(again.status).toBe(409);
     expect(again.body.code).toBe("notice-sent-already");
+  });
+
+  test("what is done for one person of an entry is done for nobody else of it", async () => {
+    const { client, entryId, notices } = await buildNotices();
+    await select("UPDATE notices SET state = 'bounced' WHERE entry_id = $1", [entryId]);
+    const [one, ...others] = await notices();
+    const act = (body: object) => client.post(`/entries/${entryId}/notices/actions`, body);
+    expect((await act({ action: "give-on-paper" })).status).toBe(422);
+    expect((await act({ action: "give-on-paper", noticeId: randomUUID() })).status).toBe(404);
+    expect((await act({ action: "give-on-paper", noticeId: one!.id })).status).toBe(201);
+    const now = await notices();
+    expect(now.find(({ id }) => id === one!.id)?.state).toBe("on-paper");
+    expect(others.map(({ id }) => now.find((row) => row.id === id)?.state)).toEqual(
+      others.map(() => "bounced"),
+    );
+    await act({ action: "send-again", noticeId: others[0]!.id });
+    expect((await notices()).map(({ state }) => state).toSorted()).toEqual([
+      "bounced",
+      "on-paper",
+      "waiting",
+    ]);
   });
 
   test("an address that the server refuses for good is a failure that shows, and nothing is tried again", async () => {

@@ -31,7 +31,7 @@ export function OutgoingNotice({
   const { i18n } = useLingui();
   const [isLooking, setIsLooking] = useState(false);
   const [place, moveFocus] = useMoveFocus<HTMLParagraphElement>();
-  const handle = useHandleNotices(entry.entryId, (action) => {
+  const handle = useHandleNotices({ entryId: entry.entryId }, (action) => {
     if (action === "send-now") onSent?.(entry.people);
     else moveFocus("[data-send-now]");
   });

@@ -14,15 +14,18 @@ export const noticeTextQuery = (id: string) =>
     queryFn: ({ signal }) => api.get(`/notices/${id}`, { schema: textReply, signal }),
   });
 
-/** Holds back, or lets go at once, what an entry will tell. */
+/** Holds back, lets go at once, or tells in another way, what an entry tells: one notice of it, or all. */
 export function useHandleNotices(
-  entryId: string,
+  { entryId, noticeId = null }: { entryId: string; noticeId?: string | null },
   onHandled: (action: NoticeAction) => void = () => undefined,
 ) {
   const client = useQueryClient();
   return useMutation({
     mutationFn: (action: NoticeAction) =>
-      api.post(`/entries/${entryId}/notices/actions`, { body: { action }, schema: entryReply }),
+      api.post(`/entries/${entryId}/notices/actions`, {
+        body: { action, noticeId },
+        schema: entryReply,
+      }),
     onSuccess: (_entry, action) => onHandled(action),
     onSettled: () =>
       Promise.all([

@@ -72,7 +72,7 @@ export function TroubledNotices({
 
 function TroubledNotice({ notice, onSent }: { notice: NoticeRow; onSent: () => void }) {
   const { i18n } = useLingui();
-  const handle = useHandleNotices(notice.entryId, (action) => {
+  const handle = useHandleNotices({ entryId: notice.entryId, noticeId: notice.id }, (action) => {
     if (action !== "give-on-paper") onSent();
   });
   const [isLooking, setIsLooking] = useState(false);
