@@ -7,12 +7,13 @@ import {
 } from "../../shared/findings/expected";
 import { foldOrders, ORDER_KINDS, WORN_KINDS } from "../../shared/findings/orders";
 import type { CrewSheetRow } from "../../shared/schemas/crew";
-import type { FindingKind, FindingState } from "../../shared/schemas/finding";
+import type { Cannot, FindingKind, FindingState } from "../../shared/schemas/finding";
 import { rows } from "../lib/db";
 import { groupBy } from "../lib/group-by";
 import { type Actor, visible } from "../lib/policy";
 import { findingPolicy } from "../policies";
 import { RULES_UNTIL } from "./finding-view";
+import { lastCannots } from "./last-cannots";
 import { lastInOrder, type Outlook, outlooksOf, WAS_CREDITED } from "./outlook";
 
 interface OrderRow {
@@ -41,6 +42,9 @@ export async function sheetOrders(
   expected: ReadonlyMap<string, ExpectedDay>,
 ): Promise<Map<string, SheetOrders>> {
   const findings = await openFindings(actor, workerIds);
+  const cannots = await lastCannots(
+    [...findings.values()].flat().map(({ findingId }) => findingId),
+  );
   const inOrder = await lastInOrder([...findings.keys()]);
   const outlooks = await outlooksOf(date, expected);
   return new Map(
@@ -50,7 +54,7 @@ export async function sheetOrders(
         (finding) => !isSettled(finding, inOrder.get(workerId) ?? null, outlook),
       );
       const lead = foldOrders(open)[0]?.lead ?? null;
-      const order = lead && toOrder(actor, lead, outlook);
+      const order = lead && toOrder(actor, lead, outlook, cannots.get(lead.findingId) ?? null);
       return [workerId, { order, ahead: aheadOf(lead, outlook) }];
     }),
   );
@@ -60,6 +64,7 @@ function toOrder(
   actor: Actor,
   { siteId, ...lead }: OrderRow,
   outlook: Outlook | null,
+  cannot: Cannot | null,
 ): NonNullable<CrewSheetRow["order"]> {
   const { findingId, kind, state, rulesUntil, revision } = lead;
   const canMarkDone = findingPolicy.can.markDone(actor, { siteId }) && state !== "done";
@@ -68,7 +73,7 @@ function toOrder(
   const facts =
     outlook && !isOfPast ? factsAhead(lead, outlook.faults, outlook.proposal) : lead.facts;
   const ofDate = facts === lead.facts ? lead.lastDate : null;
-  return { findingId, kind, state, facts, ofDate, rulesUntil, revision, canMarkDone };
+  return { findingId, kind, state, facts, ofDate, rulesUntil, cannot, revision, canMarkDone };
 }
 
 /** Null where the order of a finding says it already, or said it and was done. */
@@ -106,6 +111,6 @@ async function openFindings(
 
 /** What a row still asks for: the day to come, and the order of an open finding that nobody has marked as done. */
 export const stillAsked = ({ order, ahead }: CrewSheetRow) => [
-  ...(ahead ? [{ ...ahead, findingId: null }] : []),
+  ...(ahead ? [{ ...ahead, findingId: null, cannot: null }] : []),
   ...(order && order.state !== "done" ? [order] : []),
 ];

@@ -20,9 +20,10 @@ import {
   type DayFiguresRow,
   presentDayFigures,
 } from "../presenters/day-figures";
+import { lastCannots } from "./last-cannots";
 import { findingsToday, WAS_CREDITED } from "./outlook";
 
-type Found = Omit<FindingRow, "figures" | "can" | "worker" | "today"> & {
+type Found = Omit<FindingRow, "figures" | "can" | "cannot" | "worker" | "today"> & {
   wasCredited: boolean;
   workerId: string | null;
   workerName: string | null;
@@ -53,17 +54,23 @@ const selectFindings = (
 
 async function presentAll(actor: Actor, found: readonly Found[]): Promise<FindingRow[]> {
   const today = await findingsToday(found);
+  const cannots = await lastCannots(found.map(({ id }) => id));
   return found.map(
-    ({ workerId, workerName, employeeNumber, figures, wasCredited: _, ...finding }) => ({
-      ...finding,
-      today: today.get(finding.id) ?? null,
-      worker:
-        workerId === null
-          ? null
-          : { id: workerId, name: workerName ?? "", employeeNumber: employeeNumber ?? "" },
-      figures: figures ? presentDayFigures(figures) : null,
-      can: abilities(findingPolicy, actor, finding),
-    }),
+    ({ workerId, workerName, employeeNumber, figures, wasCredited: _, ...finding }) => {
+      const can = abilities(findingPolicy, actor, finding);
+      return {
+        ...finding,
+        today: today.get(finding.id) ?? null,
+        // Said to the officer; the worker it is about has the order itself.
+        cannot: can.handle || can.markDone ? (cannots.get(finding.id) ?? null) : null,
+        worker:
+          workerId === null
+            ? null
+            : { id: workerId, name: workerName ?? "", employeeNumber: employeeNumber ?? "" },
+        figures: figures ? presentDayFigures(figures) : null,
+        can,
+      };
+    },
   );
 }
 

@@ -25,24 +25,21 @@ export async function handOverDraft(actor: Actor, crew: Crew): Promise<HandOverD
   const sheet = await crewSheet(actor, crew);
   const { date, rows: expected } = sheet.expected;
   const open = expected.flatMap((one) =>
-    stillAsked(one).map(({ findingId, kind, facts }) => ({
+    stillAsked(one).map(({ findingId, kind, facts, cannot }) => ({
       workerName: one.worker.name,
       findingId,
       kind,
       facts,
+      cannot,
     })),
   );
-  const cannots = await lastCannots(open.flatMap(({ findingId }) => findingId ?? []));
   const ends = await absencesUntil(
     expected.filter(({ isAbsent }) => isAbsent).map(({ worker }) => worker.id),
     date,
   );
   const content: HandOverContent = {
     sheetDate: date,
-    orders: open.map((one) => ({
-      ...one,
-      cannot: (one.findingId === null ? null : cannots.get(one.findingId)) ?? null,
-    })),
+    orders: open,
     absent: expected
       .filter(({ isAbsent }) => isAbsent)
       .map(({ worker }) => ({
@@ -60,26 +57,6 @@ export async function handOverDraft(actor: Actor, crew: Crew): Promise<HandOverD
     fingerprint: createHash("sha256").update(JSON.stringify(content)).digest("hex"),
     recipients: await recipientsOf(actor, crew),
   };
-}
-
-/** What was said last as Can't of each finding, unless it was undone. */
-async function lastCannots(
-  findingIds: readonly string[],
-): Promise<Map<string, NonNullable<HandOverContent["orders"][number]["cannot"]>>> {
-  const found = await rows<{ findingId: string; text: string; byName: string; at: Date }>(
-    `SELECT DISTINCT ON (s.finding_id) s.finding_id AS "findingId", s.text, coalesce(u.name, '') AS "byName", s.created_at AS at
-     FROM finding_steps s LEFT JOIN users u ON u.id = s.author_id
-     WHERE s.finding_id = ANY (CAST(:ids AS uuid[])) AND s.kind = 'cannot'
-       AND coalesce((SELECT n.kind FROM finding_steps n WHERE n.finding_id = s.finding_id AND n.created_at > s.created_at ORDER BY n.created_at, n.id LIMIT 1), '') <> 'undone'
-     ORDER BY s.finding_id, s.created_at DESC, s.id`,
-    { ids: `{${findingIds.join(",")}}` },
-  );
-  return new Map(
-    found.map(({ findingId, text, byName, at }) => [
-      findingId,
-      { text, byName, at: at.toISOString() },
-    ]),
-  );
 }
 
 /** Last days of absences that were said ahead; null: not known. */

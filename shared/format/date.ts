@@ -97,6 +97,12 @@ export function formatDayMonth(isoDate: string, locale: Locale): string {
   return `${dayNumber(day, locale)} ${short(month)}`;
 }
 
+/** The same where the year is today's, else with the year: what has long been due is not taken for this year's. */
+export const formatDayMonthNear = (isoDate: string, today: string, locale: Locale): string =>
+  isoDate.slice(0, 4) === today.slice(0, 4)
+    ? formatDayMonth(isoDate, locale)
+    : formatShortDate(isoDate, locale);
+
 /** "Thu 3", "Do 3.": within the week. */
 export function formatWeekday(isoDate: string, locale: Locale): string {
   const { weekday, day } = localParts(isoDate, locale, "short");

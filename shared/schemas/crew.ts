@@ -85,6 +85,7 @@ export const CrewSheetRow = z.object({
       ofDate: IsoDate.nullable(),
       /** It rests on rules that no longer govern the site: the day from which others do. */
       rulesUntil: FindingRow.shape.rulesUntil,
+      cannot: FindingRow.shape.cannot,
       revision: z.number(),
       canMarkDone: z.boolean(),
     })

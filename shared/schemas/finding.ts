@@ -86,6 +86,10 @@ const FindingToday = z.discriminatedUnion("is", [
   }),
 ]);
 
+/** What a supervisor said last as Can't. */
+export const Cannot = z.object({ text: z.string(), byName: z.string(), at: z.string() });
+export type Cannot = z.infer<typeof Cannot>;
+
 export const FindingRow = z.object({
   id: z.uuid(),
   kind: FindingKind,
@@ -114,6 +118,8 @@ export const FindingRow = z.object({
   ownerName: z.string().nullable(),
   /** Overdue, to whom it was told; that mail may have come back undeliverable. */
   wentUp: z.object({ name: z.string(), on: IsoDate, hasBounced: z.boolean() }).nullable(),
+  /** Null also for whoever can take no step. */
+  cannot: Cannot.nullable(),
   revision: z.number(),
   can: Can("handle", "markDone", "comment"),
 });

@@ -13,8 +13,7 @@ export const HandOverContent = z.object({
       workerName: z.string(),
       kind: FindingRow.shape.kind,
       facts: z.record(z.string(), z.unknown()),
-      /** What was said last as Can't. */
-      cannot: z.object({ text: z.string(), byName: z.string(), at: z.string() }).nullable(),
+      cannot: FindingRow.shape.cannot,
     }),
   ),
   absent: z.array(z.object({ workerName: z.string(), untilDate: IsoDate.nullable() })),

@@ -1,5 +1,5 @@
 import { useLingui } from "@lingui/react";
-import { formatDayMonth, formatShortDate, formatWeekday } from "../../shared/format/date";
+import { formatDayMonthNear, formatShortDate, formatWeekday } from "../../shared/format/date";
 import { addDays } from "../../shared/time/zone";
 import { useLocale } from "../lib/i18n";
 
@@ -25,7 +25,7 @@ export function FindingDue({
     ? formatShortDate(dueOn, locale)
     : isNear
       ? formatWeekday(dueOn, locale)
-      : formatDayMonth(dueOn, locale);
+      : formatDayMonthNear(dueOn, today, locale);
   return (
     <span className="two-lines">
       {dueOn === today ? <b>{i18n.t("today")}</b> : <span className="mono">{date}</span>}

@@ -5,13 +5,13 @@ import type { FindingRow } from "../../shared/schemas/finding";
 import { useLocale } from "../lib/i18n";
 import { protectorWordText } from "./protector-word";
 
-type Said = Pick<FindingRow, "kind" | "facts" | "today" | "rulesUntil">;
+type Said = Pick<FindingRow, "kind" | "facts" | "today" | "rulesUntil" | "cannot">;
 
 /** The order with what it would bring, and beneath it what was noticed, by which rules where they no longer govern. */
 export function FindingWords({ finding, more = "" }: { finding: Said; more?: string }) {
   const { i18n } = useLingui();
   const locale = useLocale();
-  const { kind, facts, rulesUntil } = finding;
+  const { kind, facts, rulesUntil, cannot } = finding;
   const { order, figure } = orderToday(i18n, locale, finding, (word) =>
     protectorWordText(i18n, word),
   );
@@ -25,6 +25,11 @@ export function FindingWords({ finding, more = "" }: { finding: Said; more?: str
           `; ${i18n.t("under the rules before {date}", { date: formatDate(rulesUntil, locale) })}`}
         {more}
       </span>
+      {cannot && (
+        <b className="beneath-ink">
+          {i18n.t("Can’t, because: {text} ({name})", { text: cannot.text, name: cannot.byName })}
+        </b>
+      )}
     </span>
   );
 }

@@ -564,6 +564,7 @@ function WhoWasTold({ finding, today }: { finding: FindingView; today: string })
       {look && (
         <LookAtNotices
           notices={[look]}
+          title={i18n.t("The letter")}
           onClose={() => setLook(null)}
           actions={<Button onClick={() => setLook(null)}>{i18n.t("Close the letter")}</Button>}
         />

@@ -8,7 +8,7 @@ import { findingWord } from "../../shared/findings/words";
 import {
   formatDate,
   formatDay,
-  formatDayMonth,
+  formatDayMonthNear,
   formatTime,
   formatWeekday,
   localDateOf,
@@ -371,10 +371,10 @@ function WaitingMargin({
               ),
               value:
                 dueOn < data.today
-                  ? i18n.t("since {date}", { date: formatDayMonth(dueOn, locale) })
+                  ? i18n.t("since {date}", { date: formatDayMonthNear(dueOn, data.today, locale) })
                   : dueOn <= addDays(data.today, 6)
                     ? formatWeekday(dueOn, locale)
-                    : formatDayMonth(dueOn, locale),
+                    : formatDayMonthNear(dueOn, data.today, locale),
             }))}
           />
         </MarginNote>
@@ -391,10 +391,10 @@ function WaitingMargin({
               ),
               value:
                 dueOn < data.today
-                  ? i18n.t("since {date}", { date: formatDayMonth(dueOn, locale) })
+                  ? i18n.t("since {date}", { date: formatDayMonthNear(dueOn, data.today, locale) })
                   : dueOn <= addDays(data.today, 6)
                     ? formatWeekday(dueOn, locale)
-                    : formatDayMonth(dueOn, locale),
+                    : formatDayMonthNear(dueOn, data.today, locale),
             }))}
           />
         </MarginNote>

@@ -142,6 +142,13 @@ describe("from one shift to the next", () => {
         cannot: { text: said.text, byName: "A. Early" },
       },
     ]);
+    // The officer, whom it was said to, reads it where the finding waits, and the sheet keeps it.
+    const waiting = (await asOfficer.get("/waiting")).body;
+    expect(waiting.findings.find(({ id }: { id: string }) => id === findingId)).toMatchObject({
+      cannot: { text: said.text, byName: "A. Early" },
+    });
+    const sheet = (await early.get(`/crews/${crew.id}/sheet`)).body;
+    expect(sheet.expected.rows).toMatchObject([{ order: { cannot: { text: said.text } } }]);
     const given = await early.post(`/crews/${crew.id}/hand-overs`, {
       recipientId: late.id,
       note: "The fan is off until noon.",

@@ -18,6 +18,7 @@ const open: SheetOrder = {
   facts: {},
   ofDate: "2026-11-30",
   rulesUntil: null,
+  cannot: null,
   revision: 4,
   canMarkDone: true,
 };

@@ -261,6 +261,14 @@ export function OrderActions({
         )}
       </div>
       <p className="sheet-noticed">{noticed}</p>
+      {order.cannot && !kept && (
+        <p className="sheet-noticed">
+          {i18n.t("Can’t, because: {text} ({name})", {
+            text: order.cannot.text,
+            name: order.cannot.byName,
+          })}
+        </p>
+      )}
       {canStep && !isRefusing && (
         <TextButton
           className="sheet-cannot"

@@ -52,6 +52,7 @@ const withStep = (rows: readonly CrewSheetRow[], finding: FindingView): CrewShee
           order: {
             ...row.order,
             state: finding.state,
+            cannot: finding.cannot,
             revision: finding.revision,
             canMarkDone: finding.can.markDone && !["done", "closed"].includes(finding.state),
           },

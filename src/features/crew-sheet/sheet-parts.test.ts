@@ -48,6 +48,7 @@ const order = (facts: Partial<Order> = {}): Order => ({
   facts: {},
   ofDate: "2026-11-30",
   rulesUntil: null,
+  cannot: null,
   revision: 1,
   canMarkDone: true,
   ...facts,

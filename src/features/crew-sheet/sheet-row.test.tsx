@@ -104,6 +104,7 @@ test("an order of an earlier day stands under the word of the day expected and s
       facts: { taskName: "Run-up", protector: "Tern active", wornDb: 93.3 },
       ofDate: "2026-11-27",
       rulesUntil: null,
+      cannot: null,
       revision: 1,
       canMarkDone: true,
     },

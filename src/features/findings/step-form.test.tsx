@@ -29,6 +29,7 @@ const view = (overrides: Partial<FindingView> = {}): FindingView =>
     rulesUntil: null,
     today: null,
     wentUp: null,
+    cannot: null,
     siteId: id,
     worker: null,
     subjectName: null,

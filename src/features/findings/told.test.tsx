@@ -18,6 +18,7 @@ const overdue = {
   told: [],
   untold: "not-by-mail",
   wentUp: null,
+  cannot: null,
   goesUp: false,
 } as unknown as FindingView;
 

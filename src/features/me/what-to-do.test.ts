@@ -75,6 +75,7 @@ const finding = (facts: Partial<OwnFinding> = {}): OwnFinding => ({
   workersCount: 1,
   dueOn: null,
   rulesUntil: null,
+  cannot: null,
   wentUp: null,
   siteId: "00000000-0000-4000-8000-000000000009",
   worker: null,

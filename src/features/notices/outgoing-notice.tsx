@@ -92,6 +92,7 @@ export function OutgoingNotice({
       {handle.isError && <p role="alert">{problemText(i18n, handle.error)}</p>}
       {isLooking && (
         <LookAtNotices
+          title={i18n.t("What they will read")}
           notices={entry.notices}
           onClose={() => setIsLooking(false)}
           actions={
@@ -124,19 +125,20 @@ export function OutgoingNotice({
   );
 }
 
-/** Every mail of an entry as it would read now, one after the other. */
+/** Every mail of an entry, one after the other: as it would read now, or as it went. */
 export function LookAtNotices({
   notices,
+  title,
   onClose,
   actions,
 }: {
   notices: readonly Pick<NoticeRow, "id" | "recipientName">[];
+  title: string;
   onClose: () => void;
   actions: React.ReactNode;
 }) {
-  const { i18n } = useLingui();
   return (
-    <Dialog isOpen onClose={onClose} title={i18n.t("What they will read")} actions={actions}>
+    <Dialog isOpen onClose={onClose} title={title} actions={actions}>
       {notices.map((notice) => (
         <NoticeLetter key={notice.id} id={notice.id} recipientName={notice.recipientName} />
       ))}

@@ -98,6 +98,7 @@ function TroubledNotice({ notice, onSent }: { notice: NoticeRow; onSent: () => v
       {isLooking && (
         <LookAtNotices
           notices={[notice]}
+          title={notice.sentAt === null ? i18n.t("What they will read") : i18n.t("What was sent")}
           onClose={() => setIsLooking(false)}
           actions={<Button onClick={() => setIsLooking(false)}>{i18n.t("Close")}</Button>}
         />

@@ -17,6 +17,11 @@ export function changeSentence(
   const name = (id: string) => isolate(nameOf(id));
   switch (change.kind) {
     case "noise":
+      if (change.byDb !== null && change.byDb < 0)
+        return i18n.t("{task} louder by {amount} dB at its source", {
+          task: name(change.taskId),
+          amount: formatLevel(-change.byDb, locale),
+        });
       return change.bandsDb === null
         ? i18n.t("{task} quieter by {amount} dB at its source", {
             task: name(change.taskId),

@@ -22,6 +22,7 @@ const finding = (overrides: Partial<FindingRow> = {}): FindingRow =>
     rulesUntil: null,
     today: null,
     wentUp: null,
+    cannot: null,
     siteId: id(90),
     worker: { id: id(50), name: "R. Szabó", employeeNumber: "3425" },
     subjectName: null,
