@@ -42,6 +42,7 @@ import { mailEvents } from "./20261203150000-mail-events";
 import { mailChoices } from "./20261203150100-mail-choices";
 import { bouncesOfOtherMails } from "./20261203150200-bounces-of-other-mails";
 import { recordTransfers } from "./20261203160000-record-transfers";
+import { administratorsOfAllSites } from "./20261203170000-administrators-of-all-sites";
 
 /** In the order in which they run. */
 export const migrations = [
@@ -89,4 +90,5 @@ export const migrations = [
   representatives,
   employerGrants,
   recordTransfers,
+  administratorsOfAllSites,
 ];

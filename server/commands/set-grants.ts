@@ -5,7 +5,7 @@ import { forbidden, issue, notFound, unprocessable } from "../lib/errors";
 import { type Actor, findVisible, type Role } from "../lib/policy";
 import { Site } from "../models/site";
 import { RoleGrant } from "../models/user";
-import { sitePolicy } from "../policies";
+import { administersReach, sitePolicy } from "../policies";
 
 type Grant = z.infer<typeof GrantInput>;
 interface Held {
@@ -48,11 +48,8 @@ export async function setGrants(actor: Actor, userId: string, wanted: readonly G
   const added = wanted.filter((grant) => !held.some((other) => key(other) === key(grant)));
   const revoked = held.filter((grant) => !wanted.some((other) => key(other) === key(grant)));
   for (const { siteId } of [...added, ...revoked]) {
-    const isOurs =
-      siteId === null
-        ? actor.grants.some((grant) => grant.role === "administrator" && grant.siteId === null)
-        : actor.isAt((await findVisible(Site, sitePolicy, siteId, actor)).id, "administrator");
-    if (!isOurs) throw forbidden();
+    if (siteId !== null) await findVisible(Site, sitePolicy, siteId, actor);
+    if (!administersReach(actor, siteId)) throw forbidden();
   }
   if (revoked.length > 0) {
     await RoleGrant.update(

@@ -16,6 +16,12 @@ const officeAt = (actor: Actor, { siteId }: AtSite) =>
 /** Today in SQL terms where a membership has to hold now. */
 const today = "current_date";
 
+/** Whether the actor administers a site or, where it is null, all of them: there roles are theirs to give and to take. */
+export const administersReach = (actor: Actor, siteId: string | null): boolean =>
+  siteId === null
+    ? actor.grants.some((grant) => grant.role === "administrator" && grant.siteId === null)
+    : actor.isAt(siteId, "administrator");
+
 /** Sites: everybody with a role knows the sites of their grants; what exposure rests on is the officer's to change. */
 export const sitePolicy = policy<{ id: string }>()({
   sees: (actor, s) => [
@@ -24,8 +30,7 @@ export const sitePolicy = policy<{ id: string }>()({
   ],
   can: {
     /** A new site is nobody's yet: only who administers all of them adds one. */
-    create: (actor) =>
-      actor.grants.some(({ role, siteId }) => role === "administrator" && siteId === null),
+    create: (actor) => administersReach(actor, null),
     change: (actor, { id }) => actor.isAt(id, "administrator"),
     changeRules: (actor, { id }) => actor.isAt(id, "officer"),
   },
@@ -414,11 +419,15 @@ export const yearReportPolicy = policy<AtSite>()({
 });
 
 /** People and roles. An administrator grants them and reads no exposure by it. */
-export const userPolicy = policy<{ id: string }>()({
+/** `reaches`: the sites of the roles that somebody holds, null for all sites. What one can't give back, one can't take. */
+export const userPolicy = policy<{ id: string; reaches: readonly (string | null)[] }>()({
   sees: (actor, u) => [actor.is("administrator") && "TRUE", `${u}.id = '${actor.userId}'`],
   can: {
     change: (actor) => actor.is("administrator"),
-    revoke: (actor, { id }) => actor.is("administrator") && actor.userId !== id,
+    revoke: (actor, { id, reaches }) =>
+      actor.is("administrator") &&
+      actor.userId !== id &&
+      reaches.every((siteId) => administersReach(actor, siteId)),
   },
 });
 
@@ -426,8 +435,7 @@ export const userPolicy = policy<{ id: string }>()({
 export const keeperPolicy = policy<object>()({
   sees: (actor) => [actor.is("administrator", "auditor") && "TRUE"],
   can: {
-    change: (actor) =>
-      actor.grants.some(({ role, siteId }) => role === "administrator" && siteId === null),
+    change: (actor) => administersReach(actor, null),
   },
 });
 
@@ -436,8 +444,7 @@ export const retentionPolicy = policy<AtSite>()({
   sees: (actor, w) => [actor.at(`${w}.site_id`, "officer", "administrator")],
   can: {
     propose: officeAt,
-    setTerm: (actor) =>
-      actor.grants.some(({ role, siteId }) => role === "administrator" && siteId === null),
+    setTerm: (actor) => administersReach(actor, null),
   },
 });
 
@@ -507,10 +514,7 @@ export const tokenPolicy = policy<{ userId: string }>()({
 export const mappingPolicy = policy<{ siteId: string | null }>()({
   sees: (actor, m) => [actor.at(`${m}.site_id`, "administrator")],
   can: {
-    change: (actor, { siteId }) =>
-      siteId === null
-        ? actor.grants.some((grant) => grant.role === "administrator" && grant.siteId === null)
-        : actor.isAt(siteId, "administrator"),
+    change: (actor, { siteId }) => administersReach(actor, siteId),
   },
 });
 

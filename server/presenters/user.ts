@@ -17,6 +17,11 @@ export function presentUser(actor: Actor, row: UserRow): UserView {
     lastSignInAt: row.lastSignInAt?.toISOString() ?? null,
     revokedAt: row.revokedAt?.toISOString() ?? null,
     revision: row.revision,
-    can: row.revokedAt ? { change: false, revoke: false } : abilities(userPolicy, actor, row),
+    can: row.revokedAt
+      ? { change: false, revoke: false }
+      : abilities(userPolicy, actor, {
+          id: row.id,
+          reaches: row.grants.map(({ siteId }) => siteId),
+        }),
   };
 }

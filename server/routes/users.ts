@@ -25,6 +25,12 @@ import { ownDigest } from "../queries/digests";
 import { ownMails, sentToMe } from "../queries/mail-choices";
 import { listUsers } from "../queries/users";
 
+/** With the reaches of the roles held: what a user's policy looks at. */
+const withReaches = async (actor: Actor, id: string) => ({
+  id,
+  reaches: only(await listUsers(actor, id)).grants.map(({ siteId }) => siteId),
+});
+
 const view = async (actor: Actor, id: string) =>
   presentUser(actor, only(await listUsers(actor, id)));
 
@@ -58,7 +64,7 @@ export function defineUserRoutes(): void {
     },
     async ({ actor, params, body, ifMatch }) => {
       const user = await findVisible(User, userPolicy, params.id, actor, { lock: true });
-      authorize(userPolicy, actor, "change", user);
+      authorize(userPolicy, actor, "change", await withReaches(actor, user.id));
       await requireRevision(user, ifMatch, () => view(actor, user.id));
       await changeUser(actor, user, body);
       return view(actor, user.id);
@@ -78,7 +84,7 @@ export function defineUserRoutes(): void {
     async ({ actor, params, ifMatch }) => {
       const user = await findVisible(User, userPolicy, params.id, actor, { lock: true });
       if (user.id === actor.userId) throw new AppError("own-grant", 403);
-      authorize(userPolicy, actor, "revoke", user);
+      authorize(userPolicy, actor, "revoke", await withReaches(actor, user.id));
       await requireRevision(user, ifMatch, () => view(actor, user.id));
       await revokeUser(actor, user);
       return view(actor, user.id);

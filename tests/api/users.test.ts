@@ -164,6 +164,43 @@ describe("access", () => {
     expect(answers.map(({ body }) => body.code)).toContain("last-administrator");
   });
 
+  test("who administers all sites stays, whoever administers one of them", async () => {
+    const site = await buildSite();
+    const { organizationId } = site;
+    const { user, client } = await administratorOf(organizationId);
+    const ofSite = { organizationId, siteId: site.id, roles: ["administrator" as const] };
+    const local = await buildUser(ofSite);
+    const down = await client.put(`/users/${user.id}`, change(user.name, { role: "auditor" }), 1);
+    expect([down.status, down.body.code]).toEqual([409, "last-administrator"]);
+    // The one of the site may go, for what they give and take is still in somebody's hands.
+    const path = `/users/${local.id}/revoke`;
+    expect((await client.send({ method: "post", path, revision: 1 })).status).toBe(200);
+  });
+
+  test("nobody ends access that reaches beyond the sites they administer", async () => {
+    const site = await buildSite();
+    const { organizationId } = site;
+    await administratorOf(organizationId);
+    const elsewhere = await buildSite({ organizationId });
+    const local = await signInAs(
+      await buildUser({ organizationId, siteId: site.id, roles: ["administrator"] }),
+    );
+    const end = async (person: { id: string }) => {
+      const { rows } = (await local.get("/users")).body;
+      const { can } = rows.find(({ id }: { id: string }) => id === person.id);
+      const { status } = await local.send({
+        method: "post",
+        path: `/users/${person.id}/revoke`,
+        revision: 1,
+      });
+      return [can.revoke, status];
+    };
+    const officer = (siteId?: string) => buildUser({ organizationId, siteId, roles: ["officer"] });
+    expect(await end(await officer(elsewhere.id))).toEqual([false, 403]);
+    expect(await end(await officer())).toEqual([false, 403]);
+    expect(await end(await officer(site.id))).toEqual([true, 200]);
+  });
+
   test("roles are replaced as a whole, and hold from the next request on", async () => {
     const site = await buildSite();
     const { organizationId } = site;
