@@ -1,6 +1,6 @@
 import type { UserView } from "../../shared/schemas/user";
 import { type Actor, abilities } from "../lib/policy";
-import { userPolicy } from "../policies";
+import { administersReach, userPolicy } from "../policies";
 import type { UserRow } from "../queries/users";
 
 export function presentUser(actor: Actor, row: UserRow): UserView {
@@ -13,7 +13,10 @@ export function presentUser(actor: Actor, row: UserRow): UserView {
     workerId: row.workerId,
     workerName: row.workerName,
     language: row.language,
-    grants: row.grants,
+    grants: row.grants.map((grant) => ({
+      ...grant,
+      isWithinReach: administersReach(actor, grant.siteId),
+    })),
     lastSignInAt: row.lastSignInAt?.toISOString() ?? null,
     revokedAt: row.revokedAt?.toISOString() ?? null,
     revision: row.revision,

@@ -4,7 +4,8 @@ import { inForce } from "../lib/grants";
 import { type Actor, visible } from "../lib/policy";
 import { userPolicy } from "../policies";
 
-export type UserRow = Omit<UserView, "can" | "lastSignInAt" | "revokedAt"> & {
+export type UserRow = Omit<UserView, "can" | "grants" | "lastSignInAt" | "revokedAt"> & {
+  grants: Omit<UserView["grants"][number], "isWithinReach">[];
   lastSignInAt: Date | null;
   revokedAt: Date | null;
 };

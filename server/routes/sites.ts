@@ -31,6 +31,7 @@ export function defineSiteRoutes(): void {
     { summary: "Sites and the rules in force at each", may: may.readSites, reply: SiteList },
     async ({ actor }) => ({
       rows: (await listSites(actor)).map((site) => presentSite(actor, site)),
+      can: { create: sitePolicy.can.create(actor, { id: "" }) },
     }),
   );
 

@@ -44,7 +44,8 @@ export const SiteView = SiteInput.extend({
   can: Can("change", "changeRules"),
 });
 export type SiteView = z.infer<typeof SiteView>;
-export const SiteList = z.object({ rows: z.array(SiteView) });
+/** `create`: of another site, and of roles at all of them. */
+export const SiteList = z.object({ rows: z.array(SiteView), can: Can("create") });
 
 export const AreaInput = z.object({
   siteId: z.uuid(),

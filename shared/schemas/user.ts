@@ -54,6 +54,8 @@ export const UserView = z.object({
       endsAt: z.string().nullable(),
       /** Of the sign-in service, where the role follows it. */
       groupName: z.string().nullable(),
+      /** Within what whoever asks administers: theirs to take away. */
+      isWithinReach: z.boolean(),
     }),
   ),
   lastSignInAt: z.string().nullable(),

@@ -11,6 +11,7 @@ import {
   TextField,
   useSchemaForm,
 } from "../components/form";
+import { FormProblem } from "../components/form-problem";
 import { LangSwitch } from "../components/lang-switch";
 import { TextButton, TextLink } from "../components/link";
 import { Page, PageBody, PageHead, RunningHead, Section } from "../components/page";
@@ -125,6 +126,7 @@ function NoRole({ name }: { name: string }) {
             label={i18n.t("Code")}
             note={i18n.t("Twelve letters and figures; it works once.")}
           />
+          <FormProblem error={bind.error} form={form} />
           <FormActions>
             <SubmitButton isBusy={bind.isPending}>{i18n.t("This is me")}</SubmitButton>
           </FormActions>

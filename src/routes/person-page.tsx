@@ -55,7 +55,7 @@ export function Component() {
           title={i18n.t("New person")}
           lead={i18n.t("The first sign-in binds the person to the sign-in service’s identity.")}
         />
-        {sites.data && <NewPersonForm sites={sites.data} onSaved={back} onLeave={back} />}
+        {sites.data && <NewPersonForm administered={sites.data} onSaved={back} onLeave={back} />}
       </PageBody>
     );
   if (people.data && !person)
@@ -108,7 +108,7 @@ export function Component() {
             <PersonForm
               key={person.revision}
               person={person}
-              sites={sites.data}
+              administered={sites.data}
               onSaved={back}
               onLeave={back}
             />

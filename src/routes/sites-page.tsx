@@ -19,6 +19,7 @@ export function Component() {
   const { i18n } = useLingui();
   const { editing, edit, close } = useEditParam();
   const sites = useQuery(siteQueries.list);
+  const can = useQuery(siteQueries.can);
   if (editing !== null)
     return (
       <Suspense fallback={<Loading />}>
@@ -42,9 +43,11 @@ export function Component() {
           title={i18n.t("Sites")}
           lead={i18n.t("Where people work: time zone, language, and how long notices wait.")}
           actions={
-            <ButtonLink kind="primary" to={{ pathname: paths.sites, search: "?edit=new" }}>
-              {i18n.t("New site")}
-            </ButtonLink>
+            can.data?.create && (
+              <ButtonLink kind="primary" to={{ pathname: paths.sites, search: "?edit=new" }}>
+                {i18n.t("New site")}
+              </ButtonLink>
+            )
           }
         />
         <SitesTable

@@ -181,7 +181,7 @@ function WorkerSheet({ worker }: { worker: WorkerView }) {
           <Training worker={worker} today={today} />
           <History worker={worker} />
         </div>
-        {worker.can.issueCode && worker.leftOn === null && (
+        {worker.can.issueCode && (
           <Section title={i18n.t("Sign-in")} id="sign-in">
             <SignInSlip
               worker={worker}

@@ -9,27 +9,39 @@ import {
   useFormState,
 } from "react-hook-form";
 import type { RoleName } from "../../../shared/schemas/session";
+import type { UserView } from "../../../shared/schemas/user";
 import { Button } from "../../components/button";
 import { Field } from "../../components/form";
 import { TextButton } from "../../components/link";
 import { roleWord } from "../../lib/role-word";
-import { ROLES } from "./role-words";
+import type { AdministeredSites } from "./queries";
+import { grantWords, ROLES } from "./role-words";
 
 export interface Grant {
   role: RoleName;
   siteId?: string | null;
 }
 
-/** Roles, each at one site or at all of them. */
+/** The first role that is offered: at the one site there is, else at all, or at the first where all are not one's own. */
+export const newGrant = ({ sites, isAll }: AdministeredSites): Grant & { role: "worker" } => ({
+  role: "worker",
+  siteId: isAll && sites.length !== 1 ? null : (sites[0]?.id ?? null),
+});
+
+/** Roles, each at one site or at all of them. What reaches beyond the sites that one administers stands as it is. */
 export function GrantsField<Values extends FieldValues, Output>({
   form,
   name,
-  sites,
+  administered,
+  others = [],
 }: {
   form: UseFormReturn<Values, unknown, Output>;
   name: FieldPath<Values>;
-  sites: readonly { id: string; name: string }[];
+  administered: AdministeredSites;
+  /** Grants that are not this administrator's to change. */
+  others?: readonly Pick<UserView["grants"][number], "role" | "siteId" | "siteName">[];
 }) {
+  const { sites, isAll } = administered;
   const { i18n } = useLingui();
   const id = useId();
   const addRef = useRef<HTMLDivElement>(null);
@@ -46,7 +58,11 @@ export function GrantsField<Values extends FieldValues, Output>({
     <Field
       label={i18n.t("Roles")}
       error={typeof ofAll === "string" ? ofAll : undefined}
-      note={i18n.t("A role at one site, or at all of them. Several roles add up.")}
+      note={
+        isAll
+          ? i18n.t("A role at one site, or at all of them. Several roles add up.")
+          : i18n.t("A role at one of your sites. Several roles add up; those elsewhere stay.")
+      }
       isGroup
     >
       {() => (
@@ -55,6 +71,14 @@ export function GrantsField<Values extends FieldValues, Output>({
             {grants.map((grant, index) => {
               const own: unknown = get(errors, `${name}.${index}`);
               const message = messageIn(own);
+              const fixed = others.find(
+                ({ role, siteId }) => role === grant.role && siteId === (grant.siteId ?? null),
+              );
+              if (fixed)
+                return (
+                  // biome-ignore lint/suspicious/noArrayIndexKey: a row is its place until it is saved
+                  <li key={index}>{grantWords(i18n, fixed)}</li>
+                );
               return (
                 // biome-ignore lint/suspicious/noArrayIndexKey: a row is its place until it is saved
                 <li key={index}>
@@ -78,7 +102,7 @@ export function GrantsField<Values extends FieldValues, Output>({
                     value={grant.siteId ?? ""}
                     onChange={(event) => change(index, { siteId: event.target.value || null })}
                   >
-                    <option value="">{i18n.t("All sites")}</option>
+                    {isAll && <option value="">{i18n.t("All sites")}</option>}
                     {sites.map((site) => (
                       <option key={site.id} value={site.id}>
                         {site.name}
@@ -103,11 +127,7 @@ export function GrantsField<Values extends FieldValues, Output>({
               );
             })}
           </ul>
-          <Button
-            onClick={() =>
-              put([...grants, { role: "worker", siteId: sites.length === 1 ? sites[0]?.id : null }])
-            }
-          >
+          <Button onClick={() => put([...grants, newGrant(administered)])}>
             {i18n.t("Add a role")}
           </Button>
         </div>

@@ -1,14 +1,14 @@
 import { useLingui } from "@lingui/react";
 import { useQueryClient } from "@tanstack/react-query";
 import type { z } from "zod";
-import { LOCALE_NAMES, LOCALES, type Locale, localeOf } from "../../../shared/i18n/index";
+import { isLocale, LOCALE_NAMES, LOCALES, type Locale, localeOf } from "../../../shared/i18n/index";
 import { UserChange, UserInput, UserView } from "../../../shared/schemas/user";
 import { ComboboxField } from "../../components/combobox-field";
 import { SelectField, TextField } from "../../components/form";
 import { RecordForm } from "../../components/record-form";
 import { EmptyAsNullField } from "./empty-as-null-field";
-import { GrantsField } from "./grants-field";
-import { peopleQueries, searchWorkers } from "./queries";
+import { GrantsField, newGrant } from "./grants-field";
+import { type AdministeredSites, peopleQueries, searchWorkers } from "./queries";
 import { grantWords } from "./role-words";
 
 type Change = z.output<typeof UserChange>;
@@ -17,7 +17,7 @@ const languageName = (language: string) => LOCALE_NAMES[language as Locale] ?? l
 
 const toChange = ({ name, language, workerId, grants }: UserView): Change => ({
   name,
-  language: language === "de" ? "de" : "en",
+  language: isLocale(language) ? language : "en",
   workerId,
   grants: grants
     .filter(({ endsAt, groupName }) => endsAt === null && groupName === null)
@@ -25,7 +25,7 @@ const toChange = ({ name, language, workerId, grants }: UserView): Change => ({
 });
 
 interface FormProps {
-  sites: readonly { id: string; name: string }[];
+  administered: AdministeredSites;
   onSaved: (person: UserView) => void;
   onLeave: () => void;
 }
@@ -39,7 +39,7 @@ function useSaved(onSaved: (person: UserView) => void) {
 }
 
 /** Somebody new: known by an e-mail that the provider calls verified, or by the provider's own name for them. */
-export function NewPersonForm({ sites, onSaved, onLeave }: FormProps) {
+export function NewPersonForm({ administered, onSaved, onLeave }: FormProps) {
   const { i18n } = useLingui();
   const saved = useSaved(onSaved);
   return (
@@ -55,7 +55,7 @@ export function NewPersonForm({ sites, onSaved, onLeave }: FormProps) {
         expectedSubject: null,
         workerId: null,
         language: localeOf(i18n),
-        grants: [{ role: "worker", siteId: sites.length === 1 ? (sites[0]?.id ?? null) : null }],
+        grants: [newGrant(administered)],
       }}
       toBody={({ email, expectedSubject, ...person }) => ({
         ...toChange({ email, expectedSubject, ...person }),
@@ -95,18 +95,27 @@ export function NewPersonForm({ sites, onSaved, onLeave }: FormProps) {
             note={i18n.t("Whose own page this person sees. By name or number.")}
             search={searchWorkers}
           />
-          <GrantsField form={form} name="grants" sites={sites} />
+          <GrantsField form={form} name="grants" administered={administered} />
         </>
       )}
     </RecordForm>
   );
 }
 
-export function PersonForm({ person, sites, onSaved, onLeave }: FormProps & { person: UserView }) {
+export function PersonForm({
+  person,
+  administered,
+  onSaved,
+  onLeave,
+}: FormProps & { person: UserView }) {
   const { i18n } = useLingui();
   const saved = useSaved(onSaved);
   const siteName = (id: string | null) =>
-    id === null ? null : (sites.find((site) => site.id === id)?.name ?? id);
+    id === null
+      ? null
+      : (administered.sites.find((site) => site.id === id)?.name ??
+        person.grants.find(({ siteId }) => siteId === id)?.siteName ??
+        id);
   return (
     <RecordForm
       name={i18n.t("Change this person")}
@@ -163,7 +172,12 @@ export function PersonForm({ person, sites, onSaved, onLeave }: FormProps & { pe
                 : { value: person.workerId, label: person.workerName ?? "" }
             }
           />
-          <GrantsField form={form} name="grants" sites={sites} />
+          <GrantsField
+            form={form}
+            name="grants"
+            administered={administered}
+            others={person.grants.filter(({ isWithinReach }) => !isWithinReach)}
+          />
         </>
       )}
     </RecordForm>

@@ -10,6 +10,12 @@ import { api, newChangeKey } from "../../lib/api";
 import { useOneAtATime } from "../../lib/one-at-a-time";
 import { ownReply } from "../../lib/own-reply";
 
+/** Where one may give roles; `isAll`: also at all sites at once. */
+export interface AdministeredSites {
+  readonly sites: readonly { readonly id: string; readonly name: string }[];
+  readonly isAll: boolean;
+}
+
 export const peopleQueries = {
   all: ["people"] as const,
   list: queryOptions({
@@ -33,8 +39,11 @@ export const peopleQueries = {
   sites: queryOptions({
     queryKey: ["people", "sites"],
     queryFn: ({ signal }) =>
-      api.get("/sites", { schema: ownReply<z.infer<typeof SiteList>>("rows"), signal }),
-    select: ({ rows }) => rows.map(({ id, name }) => ({ id, name })),
+      api.get("/sites", { schema: ownReply<z.infer<typeof SiteList>>("rows", "can"), signal }),
+    select: ({ rows, can }): AdministeredSites => ({
+      sites: rows.filter((site) => site.can.change).map(({ id, name }) => ({ id, name })),
+      isAll: can.create,
+    }),
   }),
 };
 

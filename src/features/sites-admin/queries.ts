@@ -4,12 +4,14 @@ import type { SiteList } from "../../../shared/schemas/site";
 import { api } from "../../lib/api";
 import { ownReply } from "../../lib/own-reply";
 
+const list = queryOptions({
+  queryKey: ["sites-admin", "list"],
+  queryFn: ({ signal }) =>
+    api.get("/sites", { schema: ownReply<z.infer<typeof SiteList>>("rows", "can"), signal }),
+});
+
 export const siteQueries = {
   all: ["sites-admin"] as const,
-  list: queryOptions({
-    queryKey: ["sites-admin", "list"],
-    queryFn: ({ signal }) =>
-      api.get("/sites", { schema: ownReply<z.infer<typeof SiteList>>("rows"), signal }),
-    select: ({ rows }) => rows,
-  }),
+  list: queryOptions({ ...list, select: ({ rows }) => rows }),
+  can: queryOptions({ ...list, select: ({ can }) => can }),
 };
