@@ -1,6 +1,12 @@
 import type { z } from "zod";
 import type { FittingFound } from "../../shared/schemas/fit";
-import type { WorkerFilter, WorkerName, WorkerRow, WorkerView } from "../../shared/schemas/worker";
+import type {
+  WorkerFilter,
+  WorkerName,
+  WorkerNameFilter,
+  WorkerRow,
+  WorkerView,
+} from "../../shared/schemas/worker";
 import { decodeCursor, pageFrom } from "../lib/cursor";
 import { rows } from "../lib/db";
 import { issue, unprocessable } from "../lib/errors";
@@ -107,14 +113,19 @@ export async function lookUpWorkers(actor: Actor, text: string): Promise<Fitting
 }
 
 /** Names and numbers only, the best part of a list to choose one person from. */
-export async function findWorkerNames(actor: Actor, text: string): Promise<WorkerName[]> {
-  const search = containsWords(nameAndNumber("w"), text);
+export async function findWorkerNames(
+  actor: Actor,
+  filter: z.output<typeof WorkerNameFilter>,
+): Promise<WorkerName[]> {
+  const search = containsWords(nameAndNumber("w"), filter.search);
+  const isThere = "(w.left_on IS NULL OR w.left_on >= current_date)";
   return rows<WorkerName>(
     `SELECT w.id, w.site_id AS "siteId", w.name, w.employee_number AS "employeeNumber",
-       EXISTS (SELECT 1 FROM users u WHERE u.worker_id = w.id AND u.revoked_at IS NULL) AS "hasSignIn"
+       EXISTS (SELECT 1 FROM users u WHERE u.worker_id = w.id AND u.revoked_at IS NULL) AS "hasSignIn",
+       w.left_on::text AS "leftOn"
      FROM workers w WHERE w.organization_id = :organizationId AND ${visible(workerNamePolicy, actor, "w")} AND ${search.condition}
-       AND (w.left_on IS NULL OR w.left_on >= current_date)
-     ORDER BY w.name, w.id LIMIT 20`,
-    { ...search.values, organizationId: actor.organizationId },
+       ${filter.who === "all" ? "" : `AND ${isThere}`} ${filter.siteId ? "AND w.site_id = :siteId" : ""}
+     ORDER BY ${isThere} DESC, w.name, w.id LIMIT 20`,
+    { ...search.values, organizationId: actor.organizationId, siteId: filter.siteId },
   );
 }

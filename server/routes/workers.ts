@@ -47,7 +47,7 @@ export function defineWorkerRoutes(): void {
       query: WorkerNameFilter,
       reply: WorkerNameList,
     },
-    async ({ actor, query }) => ({ rows: await findWorkerNames(actor, query.search) }),
+    async ({ actor, query }) => ({ rows: await findWorkerNames(actor, query) }),
   );
 
   endpoint.get(

@@ -203,7 +203,13 @@ export const WorkerName = z.object({
   name: z.string(),
   employeeNumber: z.string(),
   hasSignIn: z.boolean(),
+  leftOn: IsoDate.nullable(),
 });
 export type WorkerName = z.infer<typeof WorkerName>;
-export const WorkerNameFilter = z.object({ search: z.string().trim().min(1).max(100) });
+export const WorkerNameFilter = z.object({
+  search: z.string().trim().min(1).max(100),
+  siteId: z.uuid().optional(),
+  /** `all`: also those who left, after those who are there. */
+  who: z.enum(["present", "all"]).default("present"),
+});
 export const WorkerNameList = z.object({ rows: z.array(WorkerName) });

@@ -1,9 +1,10 @@
 import { useLingui } from "@lingui/react";
 import { useEffect, useId, useRef, useState } from "react";
 import { type FieldValues, useController } from "react-hook-form";
+import { issueText } from "../../shared/problems/issue-text";
 import { readTyped, useTypedKey, writeTyped } from "../lib/keep-typed";
 import { problemText } from "../lib/problem-text";
-import { type Choice, Field, type FieldProps } from "./form";
+import { type Choice, Field, type FieldProps, Unreadable } from "./form";
 
 const PAUSE_MS = 150;
 
@@ -15,7 +16,8 @@ type Found =
 
 /**
  * A choice out of many, found by typing. The form holds the choice's value; `chosen` names the one it starts with.
- * The server does the searching, so that no list is ever loaded whole.
+ * The server does the searching, so that no list is ever loaded whole. What was typed and is none of them stays, and is
+ * refused: left out it would say "none".
  */
 export function ComboboxField<Values extends FieldValues, Output>({
   search,
@@ -64,7 +66,13 @@ export function ComboboxField<Values extends FieldValues, Output>({
 
   const isOpen = text !== null;
   const choices = found.state === "found" ? found.choices : [];
-  const shown = text ?? (field.value ? labelOf(field.value) : "");
+  const stored: unknown = field.value;
+  const shown =
+    text ?? (stored instanceof Unreadable ? stored.text : stored ? labelOf(stored) : "");
+  const fault =
+    stored instanceof Unreadable && text === null
+      ? issueText(i18n, { code: stored.code, params: {} })
+      : undefined;
 
   function labelOf(value: unknown): string {
     if (known && known.value === value) return known.label;
@@ -78,6 +86,18 @@ export function ComboboxField<Values extends FieldValues, Output>({
     setFound({ state: "idle" });
     field.onChange(choice?.value ?? null);
     onChoose?.(choice);
+  }
+
+  function leave() {
+    const typed = text?.trim() ?? "";
+    const meant = choices.find(({ label }) => label === typed);
+    if (meant) choose(meant);
+    else if (typed !== "" && typed !== labelOf(stored)) {
+      field.onChange(new Unreadable("invalid_value", text ?? ""));
+      onChoose?.(null);
+    }
+    setText(null);
+    field.onBlur();
   }
 
   function onKeyDown(event: React.KeyboardEvent) {
@@ -102,7 +122,7 @@ export function ComboboxField<Values extends FieldValues, Output>({
   }
 
   return (
-    <Field {...props} error={fieldState.error?.message}>
+    <Field {...props} error={fieldState.error?.message ?? fault}>
       {(wires) => (
         <div className="combobox">
           <input
@@ -126,10 +146,7 @@ export function ComboboxField<Values extends FieldValues, Output>({
               }
             }}
             onKeyDown={onKeyDown}
-            onBlur={() => {
-              setText(null);
-              field.onBlur();
-            }}
+            onBlur={leave}
           />
           {isOpen && (
             <div className="combobox-list" id={listId} role="listbox" aria-label={i18n.t("Found")}>

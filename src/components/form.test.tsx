@@ -102,6 +102,24 @@ function show(locale: Locale = "en", serverError?: ApiError) {
   return { onSave, user: userEvent.setup() };
 }
 
+test("what is typed into a choice and is none stays, is refused, and never becomes none", async () => {
+  const { onSave, user } = show();
+  await user.type(screen.getByRole("textbox", { name: "Level" }), "90");
+  await user.type(screen.getByRole("textbox", { name: "Duration" }), "7:30");
+  await user.type(screen.getByRole("textbox", { name: "Name" }), "A");
+  await user.type(screen.getByRole("combobox", { name: "Worker" }), "Nobody Here");
+  await user.tab();
+  expect(screen.getByRole("combobox", { name: "Worker" })).toHaveValue("Nobody Here");
+  expect(screen.getByText("Choose one of these.")).toBeVisible();
+  await user.click(screen.getByRole("button", { name: "Save" }));
+  expect(onSave).not.toHaveBeenCalled();
+  await user.clear(screen.getByRole("combobox", { name: "Worker" }));
+  await user.type(screen.getByRole("combobox", { name: "Worker" }), "Lind");
+  await user.click(await screen.findByRole("option", { name: /Lind/ }));
+  await user.click(screen.getByRole("button", { name: "Save" }));
+  expect(onSave).toHaveBeenCalledOnce();
+});
+
 test("a form is filled by label alone, and saves what was meant", async () => {
   const { onSave, user } = show("de");
   await user.type(screen.getByRole("textbox", { name: "Level" }), "102,6");

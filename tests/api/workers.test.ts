@@ -282,6 +282,26 @@ describe("the list of workers", () => {
     expect((await client.get(`/workers/${other.id}`)).status).toBe(404);
   });
 
+  test("names are those of who is there; whoever holds records finds who left too, at the site asked for", async () => {
+    const site = await buildSite();
+    const { organizationId } = site;
+    const elsewhere = await buildSite({ organizationId });
+    const here = await buildWorker({ site, name: "Q. Olmstead" });
+    const gone = await buildWorker({ site, name: "A. Olmstead", leftOn: "2026-03-31" });
+    await buildWorker({ site: elsewhere, name: "B. Olmstead" });
+    const client = await as(organizationId, "officer");
+    const found = async (query: string) =>
+      (await client.get(`/worker-names?search=olmstead${query}`)).body.rows.map(
+        ({ id, leftOn }: { id: string; leftOn: string | null }) => [id, leftOn],
+      );
+    expect(await found(`&siteId=${site.id}`)).toEqual([[here.id, null]]);
+    expect(await found(`&siteId=${site.id}&who=all`)).toEqual([
+      [here.id, null],
+      [gone.id, "2026-03-31"],
+    ]);
+    expect(await found("&who=all")).toHaveLength(3);
+  });
+
   test("a worker's day says when its last shift is over; nothing where no hours are known", async () => {
     const site = await buildSite();
     const worker = await buildWorker({ site });

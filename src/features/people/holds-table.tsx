@@ -1,7 +1,8 @@
 import { useLingui } from "@lingui/react";
 import { useQuery } from "@tanstack/react-query";
 import { useState } from "react";
-import { formatInstant } from "../../../shared/format/date";
+import { z } from "zod";
+import { formatInstant, formatShortDate } from "../../../shared/format/date";
 import { HoldInput, type HoldView, LiftInput } from "../../../shared/schemas/retention";
 import { ComboboxField } from "../../components/combobox-field";
 import { type DataColumn, DataTable } from "../../components/data-table";
@@ -9,6 +10,7 @@ import { Empty } from "../../components/empty";
 import {
   Form,
   FormActions,
+  RadioGroup,
   SubmitButton,
   showIssuesOn,
   TextAreaField,
@@ -18,7 +20,7 @@ import { FormProblem } from "../../components/form-problem";
 import { TextButton } from "../../components/link";
 import { useLocale } from "../../lib/i18n";
 import { ByWhom } from "./by-whom";
-import { searchWorkers } from "./queries";
+import { searchPresentAndFormer } from "./queries";
 import { retentionQueries, useLiftHold, usePlaceHold } from "./retention-queries";
 
 /** Holds that stand, then those that were lifted. */
@@ -109,11 +111,24 @@ function Lift({ hold }: { hold: HoldView }) {
   );
 }
 
+/** Everybody's records are held only where that was chosen, never because nobody is named. */
+const HoldFields = HoldInput.extend({ whose: z.enum(["worker", "everybody"]) }).check((context) => {
+  const { whose, workerId } = context.value;
+  if (whose === "worker" && workerId === null)
+    context.issues.push({
+      code: "custom",
+      input: workerId,
+      path: ["workerId"],
+      params: { code: "required" },
+    });
+});
+
 /** Holds a worker's records or everybody's of the site. */
 export function HoldForm({ siteId, onPlaced }: { siteId: string; onPlaced: () => void }) {
   const { i18n } = useLingui();
-  const form = useSchemaForm(HoldInput, {
-    defaultValues: { siteId, workerId: null, reason: "" },
+  const locale = useLocale();
+  const form = useSchemaForm(HoldFields, {
+    defaultValues: { siteId, whose: "worker", workerId: null, reason: "" },
     keepAs: `/legal-holds new ${siteId}`,
   });
   const place = usePlaceHold(() => {
@@ -123,18 +138,33 @@ export function HoldForm({ siteId, onPlaced }: { siteId: string; onPlaced: () =>
   return (
     <Form
       aria-label={i18n.t("Hold records")}
-      onSubmit={form.handleSubmit((body) =>
-        place.start(body, { onError: showIssuesOn(form, i18n) }),
+      onSubmit={form.handleSubmit(({ whose, ...body }) =>
+        place.start(
+          { ...body, workerId: whose === "everybody" ? null : body.workerId },
+          { onError: showIssuesOn(form, i18n) },
+        ),
       )}
     >
-      <ComboboxField
+      <RadioGroup
         form={form}
-        name="workerId"
-        label={i18n.t("Worker")}
-        isOptional
-        note={i18n.t("By name or number. Left empty: everybody of the site.")}
-        search={searchWorkers}
+        name="whose"
+        label={i18n.t("Whose records")}
+        choices={[
+          { value: "worker", label: i18n.t("One worker’s") },
+          { value: "everybody", label: i18n.t("Everybody’s of the site") },
+        ]}
       />
+      {form.watch("whose") === "worker" && (
+        <ComboboxField
+          form={form}
+          name="workerId"
+          label={i18n.t("Worker")}
+          note={i18n.t("By name or number; whoever left is found too.")}
+          search={searchPresentAndFormer(siteId, (date) =>
+            i18n.t("left {date}", { date: formatShortDate(date, locale) }),
+          )}
+        />
+      )}
       <TextAreaField form={form} name="reason" rows={2} label={i18n.t("Reason")} />
       <FormProblem error={place.error} />
       <FormActions>

@@ -47,6 +47,23 @@ export const peopleQueries = {
   }),
 };
 
+/** Those of a site who are there and those who left, to hold their records. */
+export const searchPresentAndFormer =
+  (siteId: string, leftWord: (date: string) => string) =>
+  async (search: string, signal: AbortSignal): Promise<readonly Choice[]> => {
+    if (search.trim() === "") return [];
+    const { rows } = await api.get("/worker-names", {
+      query: { search: search.trim(), siteId, who: "all" },
+      schema: ownReply<z.infer<typeof WorkerNameList>>("rows"),
+      signal,
+    });
+    return rows.map(({ id, name, employeeNumber, leftOn }) => ({
+      value: id,
+      label: name,
+      note: leftOn === null ? employeeNumber : `${employeeNumber}, ${leftWord(leftOn)}`,
+    }));
+  };
+
 /** Workers by name or number, to link a sign-in to. */
 export async function searchWorkers(
   search: string,
