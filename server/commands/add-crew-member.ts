@@ -2,12 +2,13 @@ import type { z } from "zod";
 import type { MembershipInput } from "../../shared/schemas/crew";
 import { recordAudit } from "../lib/audit";
 import { daysFromTo, spanIssues } from "../lib/date-range";
-import { execute } from "../lib/db";
+import { execute, rows } from "../lib/db";
 import { issue, unprocessable } from "../lib/errors";
 import type { Actor } from "../lib/policy";
 import type { Crew, Worker } from "../models/worker";
 import { checkLoanFree } from "./lend-worker";
 
+/** Somebody new in a crew. Of the crews of their own they are in one at a time: an earlier one ends the day before. */
 export async function addCrewMember(
   actor: Actor,
   crew: Crew,
@@ -23,6 +24,17 @@ export async function addCrewMember(
   }
   if (issues.length > 0) throw unprocessable(issues);
   if (isLoan) await checkLoanFree(worker.id, fromDate, toDate);
+  const ended = isLoan
+    ? []
+    : await rows<{ crewId: string }>(
+        `UPDATE crew_memberships m SET valid = daterange(lower(m.valid), CAST(:fromDate AS date)), revision = m.revision + 1
+         WHERE m.worker_id = :workerId AND m.crew_id <> :crewId AND NOT m.is_loan AND lower(m.valid) < CAST(:fromDate AS date)
+           AND (upper_inf(m.valid) OR upper(m.valid) > CAST(:fromDate AS date)) RETURNING m.crew_id AS "crewId"`,
+        { workerId: worker.id, crewId: crew.id, fromDate },
+      );
+  await execute("UPDATE crews SET revision = revision + 1 WHERE id = ANY ($1::uuid[])", [
+    ended.map(({ crewId }) => crewId),
+  ]);
   await execute(
     `INSERT INTO crew_memberships (organization_id, crew_id, worker_id, valid, is_loan) VALUES ($1, $2, $3, ${daysFromTo("$4", "$5")}, $6)`,
     [actor.organizationId, crew.id, worker.id, fromDate, toDate, isLoan],
@@ -32,6 +44,9 @@ export async function addCrewMember(
     action: "add-crew-member",
     subjectKind: "crew",
     subjectId: crew.id,
-    values: input,
+    values: {
+      ...input,
+      ...(ended.length > 0 && { endedInCrews: ended.map(({ crewId }) => crewId) }),
+    },
   });
 }

@@ -3,9 +3,11 @@ import { recordAudit } from "../lib/audit";
 import { todayAt } from "../lib/calendar";
 import { type Changes, changesBetween, isUnchanged } from "../lib/changes";
 import { rows } from "../lib/db";
+import { issue, unprocessable } from "../lib/errors";
 import type { Actor } from "../lib/policy";
 import type { Site } from "../models/site";
 import type { Worker } from "../models/worker";
+import { daysAfterLeaving } from "../queries/days-after-leaving";
 import { checkWorker } from "./check-worker";
 import { markDaysStale } from "./mark-days-stale";
 import { saveRequirementReason } from "./save-requirement-reason";
@@ -18,6 +20,7 @@ export async function changeWorker(
   input: WorkerInput,
 ): Promise<void> {
   await checkWorker(actor, input);
+  await checkLeaving(worker, input);
   const { requirementReason, ...facts } = input;
   const changes = changesBetween(worker, facts);
   const isRequirementReasonChanged = await saveRequirementReason(actor, worker, requirementReason);
@@ -40,6 +43,13 @@ export async function changeWorker(
       fromDate: todayAt(site.timeZone),
     });
   }
+}
+
+/** @throws AppError invalid where a shift stands after the day of leaving: it would be nobody's. */
+async function checkLeaving({ id, leftOn: before }: Worker, { leftOn }: WorkerInput) {
+  if (leftOn === null || leftOn === before) return;
+  const lastOn = (await daysAfterLeaving([{ id, leftOn }])).get(id);
+  if (lastOn) throw unprocessable([issue(["leftOn"], "shift-after-leaving", { lastOn })]);
 }
 
 /** The worker's sign-in reads and is written to in the record's language until its owner has chosen another. */

@@ -1,9 +1,7 @@
 import { randomInt } from "node:crypto";
 import { hashCode } from "../auth/routes";
 import { recordAudit } from "../lib/audit";
-import { todayAt } from "../lib/calendar";
 import { execute } from "../lib/db";
-import { issue, unprocessable } from "../lib/errors";
 import type { Actor } from "../lib/policy";
 import type { Worker } from "../models/worker";
 
@@ -11,13 +9,11 @@ import type { Worker } from "../models/worker";
 const alphabet = "ABCDEFGHJKLMNPQRSTUVWXYZ23456789";
 const validDays = 30;
 
-/** A code that binds a sign-in to the worker, once. Only its hash is kept; an older one that was not used ends here. */
+/** A code that binds a sign-in to the worker, once; who left keeps the right to the own records. Only its hash is kept; an older one that was not used ends here. */
 export async function issueSignInCode(
   actor: Actor,
   worker: Worker,
 ): Promise<{ code: string; expiresAt: Date }> {
-  if (worker.leftOn !== null && worker.leftOn < todayAt("UTC"))
-    throw unprocessable([issue([], "worker-left")]);
   const letters = Array.from({ length: 12 }, () => alphabet[randomInt(alphabet.length)]).join("");
   const code = letters.replace(/(.{4})(?=.)/g, "$1-");
   const expiresAt = new Date(Date.now() + validDays * 86_400_000);

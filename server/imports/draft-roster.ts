@@ -5,6 +5,7 @@ import { rows } from "../lib/db";
 import { type Actor, visible } from "../lib/policy";
 import type { Site } from "../models/site";
 import { workerPolicy } from "../policies";
+import { daysAfterLeaving } from "../queries/days-after-leaving";
 import { Cells } from "./cells";
 import type { ImportColumn } from "./columns";
 import { toProblemIssue } from "./import-draft";
@@ -129,10 +130,21 @@ export async function draftRoster(
   const crews = await idsAt("crews", site.id);
   const memberships = await membershipsOf([...known.values()].map(({ id }) => id));
   const seen = new Set<string>();
-  const entries: RosterEntry[] = [];
+  const read: { line: CsvLine; entry: RosterEntry }[] = [];
   for (const line of file.lines) {
     const entry = readLine(line);
-    if (entry && cells.areGood([line])) entries.push(entry);
+    if (entry) read.push({ line, entry });
+  }
+  const late = await daysAfterLeaving(
+    read.flatMap(({ entry: { known: before, facts, leaves } }) =>
+      before && leaves && facts.leftOn !== null ? [{ id: before.id, leftOn: facts.leftOn }] : [],
+    ),
+  );
+  const entries: RosterEntry[] = [];
+  for (const { line, entry } of read) {
+    const lastOn = late.get(entry.known?.id ?? "");
+    if (lastOn) cells.refuse(line, "left_on", "shift-after-leaving", { lastOn });
+    if (cells.areGood([line])) entries.push(entry);
   }
   const missing =
     missingLeftOn === null ? [] : await presentWithout(site.id, missingLeftOn, numbers);

@@ -1,4 +1,5 @@
 import type { I18n } from "@lingui/core";
+import { formatDate } from "../format/date";
 import { formatLevel, formatLevelChange } from "../format/level";
 import { decimalMark } from "../format/number";
 import { localeOf } from "../i18n/index";
@@ -162,6 +163,11 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("This date lies ahead.");
     case "before-hire":
       return i18n.t("This worker was hired later than that.");
+    case "shift-after-leaving":
+      return i18n.t(
+        "A shift on {date} is recorded. Leaving comes on that day or later, or the shift is struck out first.",
+        { date: formatDate(String(params.lastOn), localeOf(i18n)) },
+      );
     case "after-leaving":
       return i18n.t("This worker had left before that.");
     case "snr-below-l":
@@ -414,8 +420,6 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("There is no requirement that this would be the reason for.");
     case "job-of-other-site":
       return i18n.t("This job is another site’s.");
-    case "worker-left":
-      return i18n.t("This worker has left.");
     case "ends-before-it-starts":
       return i18n.t("It ends before it starts.");
     case "one-of-area-task-job":

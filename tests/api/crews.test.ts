@@ -170,6 +170,22 @@ describe("a crew", () => {
     expect(next.body).toMatchObject({ membersToday: 1, revision: 3 });
   });
 
+  test("who joins a crew of their own leaves the one before, the day before; on loan they stay in it", async () => {
+    const { site, client, crew, worker } = await lay();
+    const before = await buildCrew({ site, members: [worker], fromDate: "2026-01-01" });
+    const join = (into: { id: string }, more: object) =>
+      client.post(`/crews/${into.id}/memberships`, { workerId: worker.id, ...more });
+    const at = async () =>
+      (await client.get(`/crews/${before.id}`)).body.memberships.map(
+        ({ fromDate, toDate }: { fromDate: string; toDate: string }) => [fromDate, toDate],
+      );
+    const lent = { fromDate: "2026-02-01", toDate: "2026-02-07", isLoan: true };
+    await join(await buildCrew({ site }), lent);
+    expect(await at()).toEqual([["2026-01-01", null]]);
+    await join(crew, { fromDate: "2026-03-01" });
+    expect(await at()).toEqual([["2026-01-01", "2026-02-28"]]);
+  });
+
   test("a change that saw an older roster is stale", async () => {
     const { client, crew, worker } = await lay();
     const added = await client.post(`/crews/${crew.id}/memberships`, {

@@ -4,6 +4,7 @@ import { describe, expect, test } from "vitest";
 import {
   buildCrew,
   buildJob,
+  buildShift,
   buildSite,
   buildUser,
   buildWorker,
@@ -128,12 +129,14 @@ describe("a roster", () => {
   });
 
   test("one bad line, and nothing is stored: each fault by line and column", async () => {
-    const { site, client } = await buildWorks();
+    const { site, leaves, client } = await buildWorks();
     const foreign = await buildSite({ organizationId: site.organizationId });
     await buildWorker({ site: foreign, employeeNumber: "9001" });
     const officerHere = await signInAs(
       await buildUser({ organizationId: site.organizationId, roles: ["officer"], siteId: site.id }),
     );
+    // One of those who leave today stands on tomorrow's day.
+    await buildShift(leaves, { date: daysFromToday(1) });
     const bad = [
       ...lines,
       "1060,No first day,,,,,",
@@ -150,6 +153,7 @@ describe("a roster", () => {
       ({ line, field, code }: { line: number; field: string; code: string }) => [line, field, code],
     );
     expect(found).toEqual([
+      [4, "left_on", "shift-after-leaving"],
       [6, "hired_on", "first-day-needed"],
       [7, "employee_number", "worker-twice"],
       [8, "job", "job-unknown"],

@@ -451,7 +451,32 @@ describe("a worker", () => {
   });
 });
 
+describe("leaving", () => {
+  test("comes on the day of the last shift or later: a shift after it would be nobody's", async () => {
+    const site = await buildSite();
+    const worker = await buildWorker({ site });
+    await buildShift(worker, { date: "2026-03-03" });
+    const client = await as(site.organizationId, "officer");
+    const body = { ...workerBody(site), leftOn: "2026-03-02" };
+    const put = (leftOn: string) => client.put(`/workers/${worker.id}`, { ...body, leftOn }, 1);
+    const early = await put("2026-03-02");
+    expect(early.status).toBe(422);
+    expect(early.body.issues).toMatchObject([
+      { path: ["leftOn"], code: "shift-after-leaving", params: { lastOn: "2026-03-03" } },
+    ]);
+    expect((await put("2026-03-03")).status).toBe(200);
+  });
+});
+
 describe("a sign-in code", () => {
+  test("is made for who has left too: their own record stays theirs", async () => {
+    const site = await buildSite();
+    const worker = await buildWorker({ site, leftOn: "2024-01-01" });
+    const client = await as(site.organizationId, "officer");
+    const made = await client.post(`/workers/${worker.id}/sign-in-codes`, {});
+    expect(made.status).toBe(201);
+  });
+
   test("is shown once, kept as a hash, and ends the one before it", async () => {
     const site = await buildSite();
     const worker = await buildWorker({ site });

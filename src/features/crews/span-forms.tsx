@@ -77,7 +77,9 @@ export function MemberForm({
         form={form}
         name="workerId"
         label={i18n.t("Worker")}
-        note={i18n.t("Name or number.")}
+        note={i18n.t(
+          "Name or number. Of another crew of their own they are a member until the day before.",
+        )}
         search={async (search, signal) => {
           const { rows } = await api.get("/workers", {
             query: { search, siteId: crew.siteId, limit: 20 },
