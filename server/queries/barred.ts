@@ -6,6 +6,7 @@ import { groupBy } from "../lib/group-by";
 import type { Actor } from "../lib/policy";
 import { Site } from "../models/site";
 import type { Worker } from "../models/worker";
+import { cannotWear } from "./cannot-wear";
 import { deskChoice } from "./fitting-desk";
 import { type ChoiceSubject, choiceFor } from "./protector-choice";
 import { fitsOf, offersAt, pairsOf } from "./register-offers";
@@ -68,10 +69,18 @@ async function barsOfGroup(
   const singles = await offersAt(actor, siteId, date);
   const offer = await offered(singles, given, date);
   if (!offer) return [];
+  const barred = await cannotWear(
+    people.map(({ id }) => id),
+    date,
+  );
   if (!subject || !settings)
     return people.flatMap(({ id, wornGear }): [string, Bar][] => {
       const gear = wornGear.find((worn) => offer.worksWith[worn] === false);
-      return gear ? [[id, { code: "gear", gear }]] : [];
+      if (gear) return [[id, { code: "gear", gear }]];
+      const isBarred = [offer.inner, offer.outer].some(
+        (one) => one && barred.get(id)?.has(one.modelId),
+      );
+      return isBarred ? [[id, { code: "cannot-wear", gear: null }]] : [];
     });
   const choice = await choiceFor(actor, subject, date, settings);
   const all = choice.rank(singles, { wornGear: [], fits: new Map() });
@@ -84,6 +93,7 @@ async function barsOfGroup(
     const [device] = choice.rank([offer], {
       wornGear: [...choice.gear, ...wornGear],
       fits: fits.get(id) ?? new Map(),
+      barredModelIds: barred.get(id),
     });
     const bar = device ? barToIssue(device, all) : null;
     return bar ? [[id, bar]] : [];

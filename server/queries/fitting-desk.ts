@@ -15,6 +15,7 @@ import { only } from "../lib/only";
 import { type Actor, abilities, visible } from "../lib/policy";
 import type { Worker } from "../models/worker";
 import { assignmentPolicy, fitPolicy, issuePolicy } from "../policies";
+import { cannotWear } from "./cannot-wear";
 import { listFitTests } from "./fit-tests";
 import { activeChecksOf, fitsOf, offersAt, pairsOf, requiredGear } from "./register-offers";
 import { FIT_POLICY } from "./sites";
@@ -100,6 +101,7 @@ export async function deskChoice(
   const creditedModelIds = creditsActivePart
     ? (await activeChecksOf([worker.id], date)).get(worker.id)
     : undefined;
+  const barredModelIds = (await cannotWear([worker.id], date)).get(worker.id);
   const rank = (ofThese: typeof offers): Candidate[] =>
     new ProtectorChoice(
       ofThese,
@@ -113,6 +115,7 @@ export async function deskChoice(
       wornMin: wornMinOf(noises),
       fits: ofWorker,
       creditedModelIds,
+      barredModelIds,
     });
   const singles = rank(offers);
   const possible = singles.filter(({ excludedBy }) => excludedBy === null);

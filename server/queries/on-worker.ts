@@ -1,6 +1,7 @@
 import type { OnWorker } from "../../shared/findings/remedy";
 import { rows } from "../lib/db";
 import { groupBy } from "../lib/group-by";
+import { cannotWearOn } from "./cannot-wear";
 import { activeCheckInForce, fitInForce } from "./own-attenuation";
 
 interface OnDate {
@@ -9,7 +10,12 @@ interface OnDate {
   readonly date: string;
 }
 
-type ValuesRow = OnDate & { modelId: string; ownFitDb: number | null; activeCheckPassed: boolean };
+type ValuesRow = OnDate & {
+  modelId: string;
+  ownFitDb: number | null;
+  activeCheckPassed: boolean;
+  cannotWear: boolean;
+};
 
 export const onWorkerKey = ({ workerId, date }: OnDate): string => `${workerId} ${date}`;
 
@@ -18,9 +24,11 @@ export async function knownOnWorkers(days: readonly OnDate[]): Promise<Map<strin
   if (days.length === 0) return new Map();
   const found = await rows<ValuesRow>(
     `SELECT x.worker_id AS "workerId", x.date::text AS date, x.model_id AS "modelId", fit.par_db AS "ownFitDb",
-       coalesce(active.active_passed, FALSE) AS "activeCheckPassed"
-     FROM (SELECT DISTINCT f.worker_id, d.date, f.model_id FROM jsonb_to_recordset($1::jsonb) AS d("workerId" uuid, date date)
-       JOIN fit_tests f ON f.worker_id = d."workerId" AND f.tested_on <= d.date AND NOT f.is_void) x
+       coalesce(active.active_passed, FALSE) AS "activeCheckPassed", ${cannotWearOn("x.worker_id", "x.model_id", "x.date")} AS "cannotWear"
+     FROM (SELECT f.worker_id, d.date, f.model_id FROM jsonb_to_recordset($1::jsonb) AS d("workerId" uuid, date date)
+       JOIN fit_tests f ON f.worker_id = d."workerId" AND f.tested_on <= d.date AND NOT f.is_void
+       UNION SELECT r.worker_id, d.date, r.model_id FROM jsonb_to_recordset($1::jsonb) AS d("workerId" uuid, date date)
+       JOIN protector_refusals r ON r.worker_id = d."workerId" AND r.happened_on <= d.date AND r.kind = 'cannot-wear' AND r.model_id IS NOT NULL) x
      LEFT JOIN LATERAL (SELECT s.size FROM assignments s
        WHERE s.worker_id = x.worker_id AND s.inner_model_id = x.model_id AND s.outer_model_id IS NULL AND s.valid @> x.date
        ORDER BY (s.task_id IS NULL AND s.area_id IS NULL) DESC, s.id LIMIT 1) a ON TRUE
@@ -32,9 +40,9 @@ export async function knownOnWorkers(days: readonly OnDate[]): Promise<Map<strin
     [...groupBy(found, onWorkerKey)].map(([key, models]) => [
       key,
       new Map(
-        models.map(({ modelId, ownFitDb, activeCheckPassed }) => [
+        models.map(({ modelId, ownFitDb, activeCheckPassed, cannotWear }) => [
           modelId,
-          { ownFitDb, activeCheckPassed },
+          { ownFitDb, activeCheckPassed, cannotWear },
         ]),
       ),
     ]),

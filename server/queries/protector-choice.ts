@@ -122,7 +122,7 @@ export async function choiceFor(
   const singles = await offersAt(actor, siteId, date);
   const rank = (
     offers: typeof singles,
-    wearer: Pick<WearerOf, "wornGear" | "fits" | "creditedModelIds">,
+    wearer: Pick<WearerOf, "wornGear" | "fits" | "creditedModelIds" | "barredModelIds">,
   ): RankedProtector[] =>
     new ProtectorChoice(
       offers,

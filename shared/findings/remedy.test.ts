@@ -159,6 +159,20 @@ test("the worker's own would do if it were worn: nothing is to be given", () => 
   });
 });
 
+test("what the worker cannot wear is neither proposed nor said to be worn throughout", () => {
+  const cannot = (modelId: string) =>
+    new Map([[modelId, { ownFitDb: null, activeCheckPassed: false, cannotWear: true }]]);
+  const loud = day(task("Grinding", 240, 100), task("Fettling", 240, 96));
+  const register = [heavy, middle, band];
+  expect(proposeRemedy(loud, UK, register)?.remedy?.names).toEqual(["Middle muff"]);
+  const found = proposeRemedy(loud, UK, register, cannot(middle.modelId));
+  expect(found?.remedy?.names ?? []).not.toContain("Middle muff");
+  const held = day(task("Grinding", 480, 110, wears(heavy, 60)), task("Break", 30, 60));
+  expect(proposeRemedy(held, UK, register, cannot(heavy.modelId))?.left?.kind).not.toBe(
+    "wear-throughout",
+  );
+});
+
 test("where nothing works it says what is left", () => {
   // 120 − 30 = 90 while worn, over the 85 of the action value.
   expect(proposeRemedy(day(task("Blow-down", 480, 120)), UK, [heavy, middle])?.left).toMatchObject({

@@ -49,7 +49,12 @@ export interface LeftToDo {
 export type Proposal = { remedy: Remedy; left: null } | { remedy: null; left: LeftToDo };
 
 /** What is known of single models on this worker, by model: the verdict would rest on it. */
-export type OnWorker = ReadonlyMap<string, Pick<Protection, "ownFitDb" | "activeCheckPassed">>;
+export type OnWorker = ReadonlyMap<string, KnownOnWorker>;
+
+type KnownOnWorker = Pick<Protection, "ownFitDb" | "activeCheckPassed"> & {
+  /** Then it is not proposed. Absent: nothing is known against it. */
+  readonly cannotWear?: boolean;
+};
 
 /** Best first. A protector that takes too much is a fault as well. */
 const ORDER: readonly ProtectorWord[] = ["good", "enough", "just-enough", "strong-side"];
@@ -106,13 +111,15 @@ class Search {
   private readonly noises: readonly Noise[];
   private readonly hasTaskWords: boolean;
   private readonly onWorker: OnWorker;
+  private readonly isBarred: (modelId: string) => boolean;
 
   constructor(
     private readonly input: DayInput,
     private readonly governing: RuleSetVersion,
     onWorker: OnWorker,
   ) {
-    this.onWorker = new Map([...onWorker, ...heldOnWorker(input)]);
+    this.onWorker = new Map<string, KnownOnWorker>([...onWorker, ...heldOnWorker(input)]);
+    this.isBarred = (modelId) => onWorker.get(modelId)?.cannotWear ?? false;
     this.noises = noiseByTask(input);
     this.hasTaskWords = governing.protection.adequacy === "en-458";
   }
@@ -123,7 +130,9 @@ class Search {
     if (unworn) return unworn;
 
     // In one order, so that of two that are alike always the same is proposed.
-    const models = register.toSorted((a, b) => (a.modelId < b.modelId ? -1 : 1));
+    const models = register
+      .filter(({ modelId }) => !this.isBarred(modelId))
+      .toSorted((a, b) => (a.modelId < b.modelId ? -1 : 1));
     const singles = models.map((inner) => this.option(inner, null));
     const single = this.bestForTheDay(singles);
     if (single) return single;
@@ -143,7 +152,7 @@ class Search {
 
   /** The worker's own protectors would have been right: then nothing has to be given. */
   private wornTooShort(): Proposal | null {
-    if (this.noises.some(({ held }) => held === null)) return null;
+    if (this.noises.some(({ held }) => held === null || this.isUnwearable(held))) return null;
     const asWorked = evaluateDay(this.input, this.governing, []);
     if (this.isRight(asWorked)) return null;
     const throughout = evaluateDay(
@@ -160,6 +169,10 @@ class Search {
       );
     const noise = this.noises.find(({ timedIds }) => worst && timedIds.has(worst.timedTaskId));
     return { remedy: null, left: leftIn("wear-throughout", noise) };
+  }
+
+  private isUnwearable({ inner, outer }: Protection): boolean {
+    return this.isBarred(inner.modelId) || (outer !== null && this.isBarred(outer.modelId));
   }
 
   private inTaskDb(atEar: TaskAtEar): number {

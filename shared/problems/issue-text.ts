@@ -464,6 +464,8 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("This protector does not come in that size.");
     case "not-with-gear":
       return i18n.t("It can’t be worn with what is worn beside it. Take another.");
+    case "cannot-be-worn":
+      return i18n.t("This worker cannot wear it. Take another, or test its fit anew first.");
     case "no-data-no-fit":
       return i18n.t(
         "Its data say nothing of this noise. Test the fit first: it goes out once that reaches what is needed.",

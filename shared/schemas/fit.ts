@@ -143,7 +143,7 @@ export const Candidate = z.object({
   kind: z.string(),
   /** Set: it is out, and why. */
   excludedBy: z
-    .object({ code: z.enum(["gear", "no-data", "archived"]), gear: Gear.nullable() })
+    .object({ code: z.enum(["gear", "cannot-wear", "no-data", "archived"]), gear: Gear.nullable() })
     .nullable(),
   word: z
     .enum(["too-little", "just-enough", "good", "strong-side", "too-much", "enough"])

@@ -95,6 +95,8 @@ export function exclusionWord(i18n: I18n, { code, gear }: Bar): string {
       return gear === null
         ? i18n.t("not with what is worn beside it")
         : i18n.t("not with {gear}", { gear: gearWord(i18n, gear) });
+    case "cannot-wear":
+      return i18n.t("this worker cannot wear it");
     case "no-data":
       return i18n.t("its data say nothing of this noise");
     case "archived":

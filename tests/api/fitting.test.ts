@@ -485,6 +485,33 @@ describe("an active muff at the desk and among what is chosen from", () => {
   });
 });
 
+describe("what a worker cannot wear", () => {
+  test("is out of the question, goes out only on a fit that was tested since, and a mere refusal is not", async () => {
+    const desk = await openDesk();
+    const { client, worker, muff, plug } = desk;
+    const say = (kind: string, modelId: string) =>
+      client.post(`/workers/${worker.id}/refusals`, {
+        kind,
+        modelId,
+        happenedOn: today,
+        reason: "inflamed ear canal",
+      });
+    await say("cannot-wear", plug.id);
+    await say("refused", muff.id);
+    const barOf = async (modelId: string) =>
+      (await client.get(`/workers/${worker.id}/fitting`)).body.candidates.find(
+        (one: { modelId: string }) => one.modelId === modelId,
+      ).excludedBy?.code;
+    expect(await barOf(plug.id)).toBe("cannot-wear");
+    expect(await barOf(muff.id)).not.toBe("cannot-wear");
+    const refused = await issue(desk, issueOf(plug.id, [muff.id, plug.id]));
+    expect(refused.status).toBe(422);
+    expect(refused.body.issues).toMatchObject([{ path: ["modelId"], code: "cannot-be-worn" }]);
+    await record(desk, fitBody(plug.id));
+    expect(await barOf(plug.id)).not.toBe("cannot-wear");
+  });
+});
+
 describe("a fit test", () => {
   test("where Appendix B governs, the label's rating less 7 stands beside it", async () => {
     for (const [governingRuleSet, less7] of [

@@ -6,9 +6,12 @@ type Judged = Pick<RankedProtector, "excludedBy" | "wornDb">;
 /** Why a device may not be tried on a worker, or not go out to one. */
 export type Bar = NonNullable<RankedProtector["excludedBy"]>;
 
-/** What can't be worn is not tried either; where only data are missing, an own fit is what gives them. Null: it may be tried. */
+/**
+ * What can't be worn is not tried either; where only data are missing, an own fit is what gives them, and what a worker
+ * could not wear may be worn again, which a trial shows. Null: it may be tried.
+ */
 export const barToTrial = ({ excludedBy }: Pick<Asked, "excludedBy">): Bar | null =>
-  excludedBy?.code === "no-data" ? null : excludedBy;
+  excludedBy?.code === "no-data" || excludedBy?.code === "cannot-wear" ? null : excludedBy;
 
 /** By its own data: what a fit alone tells is of the one who was tested. */
 const isJudged = ({ excludedBy, wornDb }: Judged): boolean =>

@@ -84,6 +84,8 @@ export interface Wearer {
    * Models whose active part counts on this wearer: the site credits it, and the check of it has passed. Absent: none.
    */
   readonly creditedModelIds?: ReadonlySet<string>;
+  /** Models that this wearer can't wear. Absent: none. */
+  readonly barredModelIds?: ReadonlySet<string>;
 }
 
 /** A comparison of two candidates, in the order in which they are made. */
@@ -107,7 +109,7 @@ export interface RankedProtector {
   readonly name: string;
   readonly kind: string;
   readonly excludedBy: {
-    readonly code: "gear" | "no-data" | "archived";
+    readonly code: "gear" | "cannot-wear" | "no-data" | "archived";
     readonly gear: WornGear | null;
   } | null;
   readonly word: ProtectorWord | null;
@@ -395,16 +397,19 @@ const fitOf = ({ offer }: Prepared, { fits }: Wearer): OwnFit | null =>
 /** Null: nothing speaks against it. */
 function exclusionOf(
   { offer }: Prepared,
-  { wornGear, noises }: Wearer,
+  { wornGear, noises, barredModelIds }: Wearer,
   atEar: AtEar | null,
 ): RankedProtector["excludedBy"] {
   if (offer.isArchived) return ARCHIVED;
   for (const gear of wornGear) if (offer.worksWith[gear] === false) return { code: "gear", gear };
+  for (const one of [offer.inner, offer.outer])
+    if (one && barredModelIds?.has(one.modelId)) return CANNOT_WEAR;
   // Where nothing asks for a protector, nothing is asked of its data.
   return atEar === null && noises.some(({ isBare }) => !isBare) ? NO_DATA : null;
 }
 
 const ARCHIVED = { code: "archived", gear: null } as const;
+const CANNOT_WEAR = { code: "cannot-wear", gear: null } as const;
 const NO_DATA = { code: "no-data", gear: null } as const;
 
 function batteryLasts({ inner }: Offer, wornMin: number): boolean | null {

@@ -47,7 +47,7 @@ const doesSuit = ({ word, wornDb }: Candidate): boolean =>
 
 /** What the worker refused or can't wear of it, as was last said of each: it can be chosen all the same. */
 function Refused({
-  row: { modelId, outerModelId },
+  row: { modelId, outerModelId, excludedBy },
   refusals,
 }: {
   row: Candidate;
@@ -55,6 +55,8 @@ function Refused({
 }) {
   const { i18n } = useLingui();
   const locale = useLocale();
+  // Then it stands there already as what puts it out of the question.
+  if (excludedBy?.code === "cannot-wear") return null;
   return [modelId, outerModelId].map((id) => {
     const latest = refusals.find((one) => one.modelId !== null && one.modelId === id);
     if (!latest || latest.kind === "not-worn") return null;
@@ -218,11 +220,11 @@ export function CandidatesTable({
       id: "pick",
       head: <span className="sr-only">{pickWord}</span>,
       kind: "right",
-      // What does not go, or is no longer in use, is not held out; where only data are missing it is, more quietly.
+      // What does not go, or is no longer in use, is not held out; what a trial could show is, more quietly.
       cell: (row) => {
         const wires = { "aria-label": pickLabel?.(row.name), onClick: () => onPick?.(row) };
         if (row.excludedBy === null) return <Button {...wires}>{pickWord}</Button>;
-        return row.excludedBy.code === "no-data" ? (
+        return row.excludedBy.code === "no-data" || row.excludedBy.code === "cannot-wear" ? (
           <TextButton {...wires}>{pickWord}</TextButton>
         ) : null;
       },
