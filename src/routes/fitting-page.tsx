@@ -328,7 +328,7 @@ function AtDesk({
           state={issues.isError ? "failed" : issues.data ? "ready" : "loading"}
           error={issues.error}
           onRetry={() => void issues.refetch()}
-          empty={<Empty title={i18n.t("Nothing was handed out yet.")} />}
+          empty={<Empty title={i18n.t("Nothing that was handed out is with this worker.")} />}
         />
         {desk.issued.length > 0 && (
           <p className="after-table">

@@ -32,7 +32,7 @@ import {
 } from "../features/wearing/tally";
 import { ApiError, isUnreached, newChangeKey } from "../lib/api";
 import { useLocale } from "../lib/i18n";
-import { keptActsOf } from "../lib/kept-acts";
+import { keptActsOf, useKeptActs } from "../lib/kept-acts";
 import { useOneAtATime } from "../lib/one-at-a-time";
 import { paths } from "../paths";
 import "../styles/sample.css";
@@ -296,7 +296,9 @@ function Round({
   const [isKept, setKept] = useState(false);
   const check = useRef<HTMLHeadingElement>(null);
   const send = useSendRound();
-  const acts = keptActsOf(useUser().id);
+  const userId = useUser().id;
+  const acts = keptActsOf(userId);
+  const waitsHere = useKeptActs(userId).some(({ words }) => words.kind === "round");
   const { begin, end } = useOneAtATime();
   const countOf = countsOf(draft.taps);
   const all = countAll(draft.taps);
@@ -476,7 +478,11 @@ function Round({
           )}
           <p role="status">
             {isKept &&
-              i18n.t("The round is kept on this device and sent as soon as there is a connection.")}
+              (waitsHere
+                ? i18n.t(
+                    "The round is kept on this device and sent as soon as there is a connection.",
+                  )
+                : i18n.t("The round was sent."))}
           </p>
           <ProblemIssues error={send.error} />
           {isWaiting && !send.isPending && (

@@ -15,7 +15,7 @@ import {
 } from "../../components/form";
 import { FormProblem } from "../../components/form-problem";
 import { useChangeKey } from "../../lib/change-key";
-import { FitFields, factsOf, numbersIn, possibleTrials } from "./fit-fields";
+import { FitFields, factsOf, possibleTrials, trialsTyped } from "./fit-fields";
 import { showFitIssuesOn } from "./fit-issues";
 import { FitRatingLine } from "./fit-rating-line";
 import { fitMethodWord } from "./fit-words";
@@ -84,8 +84,7 @@ export function CorrectFit({ test, onDone }: { test: FitTestView; onDone: () => 
         onLeave={() => form.setFocus("note")}
       />
       <FitRatingLine
-        leftDb={numbersIn(values.leftDb)}
-        rightDb={numbersIn(values.rightDb)}
+        {...trialsTyped(values.leftDb, values.rightDb)}
         methodSdDb={typeof values.methodSdDb === "number" ? values.methodSdDb : 0}
         confidencePct={confidencePct}
         needDb={needDb}

@@ -1,6 +1,7 @@
 import { z } from "zod";
 import { impossibleTrials } from "../../../shared/acoustics/protection/fit-rating";
 import { FIT_METHODS, type FitFacts, FitMethod } from "../../../shared/schemas/fit";
+import { Unreadable } from "../../components/form";
 import type { Typed } from "../../components/number-input";
 import { MOST_TRIALS } from "./trial-cells";
 
@@ -45,9 +46,18 @@ export function possibleTrials(context: {
 /** Microphones at the cup have a page of their own. */
 export const DESK_METHODS = FIT_METHODS.filter((method) => method !== "two-microphones");
 
-/** The figures among what is typed. */
-export const numbersIn = (values: unknown): number[] =>
-  (Array.isArray(values) ? (values as Typed[]) : []).filter((value) => typeof value === "number");
+const typedIn = (values: unknown): readonly Typed[] =>
+  Array.isArray(values) ? (values as Typed[]) : [];
+
+/** The trials as far as they are typed. What can't be read isn't left out: nothing is rated until it is mended. */
+export function trialsTyped(left: unknown, right: unknown): Pick<FitFacts, "leftDb" | "rightDb"> {
+  const isReadable = ![...typedIn(left), ...typedIn(right)].some(
+    (trial: unknown) => trial instanceof Unreadable,
+  );
+  const numbers = (values: unknown) =>
+    isReadable ? typedIn(values).filter((value) => typeof value === "number") : [];
+  return { leftDb: numbers(left), rightDb: numbers(right) };
+}
 
 export const factsOf = (
   { leftDb, rightDb, methodSdDb }: Pick<FitFacts, "leftDb" | "rightDb" | "methodSdDb">,

@@ -13,7 +13,6 @@ import {
   SubmitButton,
   TextAreaField,
   TextField,
-  Unreadable,
   useSchemaForm,
 } from "../../components/form";
 import { FormProblem } from "../../components/form-problem";
@@ -22,7 +21,7 @@ import { Status } from "../../components/status";
 import { useChangeKey } from "../../lib/change-key";
 import { useLocale } from "../../lib/i18n";
 import { useOneAtATime } from "../../lib/one-at-a-time";
-import { DESK_METHODS, FitFields, factsOf, numbersIn, possibleTrials } from "./fit-fields";
+import { DESK_METHODS, FitFields, factsOf, possibleTrials, trialsTyped } from "./fit-fields";
 import { showFitIssuesOn } from "./fit-issues";
 import { FitRatingLine } from "./fit-rating-line";
 import { fitMethodWord, judgedDb } from "./fit-words";
@@ -90,9 +89,6 @@ export function FitForm({
   useEffect(() => {
     if (misfit) form.setFocus("leftDb");
   }, [misfit, form.setFocus]);
-  const isReadable = ![...(values.leftDb ?? []), ...(values.rightDb ?? [])].some(
-    (trial: unknown) => trial instanceof Unreadable,
-  );
   const { modelId: chosenId, method: chosenMethod } = values;
   const sizes = sizesOf(chosenId);
   const isOwnFigure = values.methodSdDb !== METHOD_SD_DB[chosenMethod];
@@ -226,9 +222,7 @@ export function FitForm({
         onLeave={() => void submit()}
       />
       <FitRatingLine
-        // What can't be read isn't left out: nothing is rated until it is mended.
-        leftDb={isReadable ? numbersIn(values.leftDb) : []}
-        rightDb={isReadable ? numbersIn(values.rightDb) : []}
+        {...trialsTyped(values.leftDb, values.rightDb)}
         methodSdDb={typeof values.methodSdDb === "number" ? values.methodSdDb : 0}
         confidencePct={confidencePct}
         needDb={needDb}

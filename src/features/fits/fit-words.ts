@@ -132,7 +132,7 @@ export function decidedWord(i18n: I18n, decidedBy: Candidate["decidedBy"]): stri
     case "margin":
       return i18n.t("by the margin at the ear");
     case "least-margin":
-      return i18n.t("all take off too much, the least first");
+      return i18n.t("all take off too much by EN 458, the least first");
     case "fit":
       return i18n.t("by own fit");
     case "battery":

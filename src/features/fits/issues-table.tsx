@@ -211,7 +211,9 @@ function EndForm({
           label: endedWord(i18n, how),
           note:
             how === "returned"
-              ? i18n.t("Goes back into the stock; the assignment ends.")
+              ? i18n.t(
+                  "Goes back into the stock; the assignment ends. Issue another to whoever still works in noise.",
+                )
               : how === "replaced"
                 ? i18n.t("Another of the same takes its place; the assignment stays.")
                 : i18n.t("The assignment ends; issue another so that nobody is without."),
