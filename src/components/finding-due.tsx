@@ -1,5 +1,5 @@
 import { useLingui } from "@lingui/react";
-import { formatDayMonthNear, formatShortDate, formatWeekday } from "../../shared/format/date";
+import { formatDayMonth, formatShortDate, formatWeekday } from "../../shared/format/date";
 import { addDays } from "../../shared/time/zone";
 import { useLocale } from "../lib/i18n";
 
@@ -25,10 +25,12 @@ export function FindingDue({
     ? formatShortDate(dueOn, locale)
     : isNear
       ? formatWeekday(dueOn, locale)
-      : formatDayMonthNear(dueOn, today, locale);
+      : formatDayMonth(dueOn, locale);
+  const year = dueOn.slice(0, 4);
   return (
     <span className="two-lines">
       {dueOn === today ? <b>{i18n.t("today")}</b> : <span className="mono">{date}</span>}
+      {isNearby && !isNear && year !== today.slice(0, 4) && <span className="beneath">{year}</span>}
       {dueOn < today && !isSettled && <b className="beneath-ink">{i18n.t("overdue")}</b>}
     </span>
   );
