@@ -63,9 +63,13 @@ function OwnPage({ workerId }: { workerId: string }) {
   const lastDay = days.data?.[0] ?? null;
   const { finished, running } = lastFinished(days.data ?? [], now);
 
+  const leftOn = worker.data?.leftOn ?? null;
+  const hasLeft = leftOn !== null && leftOn < today;
+
   // The day of which nobody knows how long it was worn: the worker may say it here, once it is over.
   const askedFor = findings.data?.find(
     ({ kind, state, lastDate }) =>
+      !hasLeft &&
       kind === "wearing-unknown" &&
       state !== "done" &&
       running.every(({ date }) => date !== lastDate),
@@ -92,6 +96,7 @@ function OwnPage({ workerId }: { workerId: string }) {
       lastDay,
       protectors,
       findings: findings.data,
+      leftOn: hasLeft ? leftOn : null,
     });
     title = order;
     more = rest;
@@ -122,11 +127,13 @@ function OwnPage({ workerId }: { workerId: string }) {
             </TextLink>
           </p>
         )}
-        <Section title={i18n.t("My protectors")} id="my-protectors">
-          {part(
-            <MyProtectors workerId={workerId} protectors={protectors ?? []} lastDay={lastDay} />,
-          )}
-        </Section>
+        {!hasLeft && (
+          <Section title={i18n.t("My protectors")} id="my-protectors">
+            {part(
+              <MyProtectors workerId={workerId} protectors={protectors ?? []} lastDay={lastDay} />,
+            )}
+          </Section>
+        )}
         <Section title={i18n.t("My last shift")} id="my-last-shift">
           {part(
             <LastShift
@@ -139,7 +146,7 @@ function OwnPage({ workerId }: { workerId: string }) {
             />,
           )}
         </Section>
-        {protectors && (
+        {protectors && !hasLeft && (
           <Suspense fallback={null}>
             <TaskTimes workerId={workerId} />
           </Suspense>

@@ -87,8 +87,12 @@ const finding = (facts: Partial<OwnFinding> = {}): OwnFinding => ({
   can: { handle: false, markDone: false, comment: false },
   ...facts,
 });
-const say = (lastDay: OwnDay | null, protectors: OwnProtector[], findings: OwnFinding[] = []) =>
-  whatToDo(testI18n(), "en", { lastDay, protectors, findings });
+const say = (
+  lastDay: OwnDay | null,
+  protectors: OwnProtector[],
+  findings: OwnFinding[] = [],
+  leftOn: string | null = null,
+) => whatToDo(testI18n(), "en", { lastDay, protectors, findings, leftOn });
 
 describe("what to do", () => {
   test("nothing is wrong: what is worn, and where it changes", () => {
@@ -97,6 +101,12 @@ describe("what to do", () => {
       "In Teardown change to your Sedge band.",
     ]);
     expect(say(day(), [protector()])).toEqual(["Wear your Fenmuff in noise."]);
+  });
+
+  test("nothing is asked of whoever has left", () => {
+    expect(say(day(), [protector()], [], "2026-11-30")).toEqual([
+      "You left on 30 November 2026. Your record stays here.",
+    ]);
   });
 
   test("nobody changes to what is worn there already", () => {

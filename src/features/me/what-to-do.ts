@@ -2,6 +2,7 @@ import type { I18n } from "@lingui/core";
 import { factsToday, protectorNames, textOf } from "../../../shared/findings/facts";
 import { foldOrders, ORDER_KINDS } from "../../../shared/findings/orders";
 import { workerSentence } from "../../../shared/findings/worker-sentence";
+import { formatDate } from "../../../shared/format/date";
 import type { Locale } from "../../../shared/i18n/index";
 import type { FindingKind } from "../../../shared/schemas/finding";
 import type { OwnProtector } from "./own-protectors";
@@ -14,6 +15,8 @@ interface Known {
   lastDay: OwnDay | null;
   protectors: readonly OwnProtector[];
   findings: readonly OwnFinding[];
+  /** The last day of whoever has left; null: still there. */
+  leftOn: string | null;
 }
 
 const ABOUT_PROTECTOR: ReadonlySet<FindingKind> = new Set<FindingKind>([
@@ -126,7 +129,12 @@ function whatToWear(i18n: I18n, protectors: readonly OwnProtector[]): string[] {
 
 /** What to do, in the order of its weight: the first sentence is the page's title. */
 export function whatToDo(i18n: I18n, locale: Locale, known: Known): [string, ...string[]] {
-  const { lastDay, protectors } = known;
+  const { lastDay, protectors, leftOn } = known;
+  // Nothing is asked of whoever has left, and nothing is to be worn: the record stays theirs.
+  if (leftOn !== null)
+    return [
+      i18n.t("You left on {date}. Your record stays here.", { date: formatDate(leftOn, locale) }),
+    ];
   const open = asked(known);
   const isProtectorInDoubt = open.some(({ kind }) => ABOUT_PROTECTOR.has(kind));
   const sentences = [
