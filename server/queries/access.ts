@@ -35,8 +35,9 @@ export async function readersOfWorker(workerId: string): Promise<ReaderView[]> {
            OR (g.role = 'employer' AND (g.site_id = w.site_id OR EXISTS (SELECT 1 FROM days v WHERE v.worker_id = w.id AND v.site_id = g.site_id))
              AND EXISTS (SELECT 1 FROM worker_employers e WHERE e.worker_id = w.id AND e.employer = g.employer_kind AND e.employer_name = g.employer_name)))
          UNION ALL
-         SELECT DISTINCT u.id, u.name, 'supervisor', NULL::text, NULL::int, NULL::timestamptz, NULL::text, NULL::text, c.name
-         FROM crew_memberships m JOIN crews c ON c.id = m.crew_id JOIN crew_supervisors v ON v.crew_id = c.id
+         SELECT DISTINCT u.id, u.name, 'supervisor', NULL::text, NULL::int,
+           least(upper(m.valid), upper(v.valid))::timestamp AT TIME ZONE s.time_zone, s.time_zone, NULL::text, c.name
+         FROM crew_memberships m JOIN crews c ON c.id = m.crew_id JOIN sites s ON s.id = c.site_id JOIN crew_supervisors v ON v.crew_id = c.id
            JOIN users u ON u.id = v.user_id AND u.revoked_at IS NULL
          WHERE m.worker_id = :workerId AND m.valid @> current_date AND v.valid @> current_date
            AND EXISTS (SELECT 1 FROM role_grants g WHERE g.user_id = u.id AND g.role = 'supervisor' AND ${inForce("g")})) x ${ORDER}`,

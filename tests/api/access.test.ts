@@ -3,11 +3,13 @@ import type { RouteSpec } from "../../server/lib/endpoint";
 import { routes } from "../../server/lib/endpoint";
 import type { Role } from "../../server/lib/policy";
 import {
+  buildCrew,
   buildDay,
   buildSite,
   buildSupervisorOf,
   buildUser,
   buildWorker,
+  daysFromToday,
   insert,
   type Site,
   select,
@@ -113,6 +115,25 @@ describe("who can see a worker's record", () => {
     ]);
     expect(record[3]).toMatchObject({ year: 2025, siteName: site.name });
     expect(account.map(({ role }: { role: string }) => role)).toEqual(["auditor", "administrator"]);
+  });
+
+  test("of a loan it says until when: the midnight after its last day, by the site's clock", async () => {
+    const site = await buildSite({ timeZone: "UTC" });
+    const { organizationId } = site;
+    const { worker, client } = await ownClient(site);
+    const own = await buildSupervisorOf(site, worker);
+    const borrower = await buildUser({ organizationId, roles: ["supervisor"] });
+    const crew = await buildCrew({ site, supervisors: [borrower] });
+    const last = daysFromToday(3);
+    await select(
+      "INSERT INTO crew_memberships (organization_id, crew_id, worker_id, valid, is_loan) VALUES ($1, $2, $3, daterange(current_date, $4::date, '[]'), TRUE)",
+      [organizationId, crew.id, worker.id, last],
+    );
+    const { record } = (await client.get("/me/access")).body;
+    const endOf = ({ id }: { id: string }) =>
+      record.find(({ userId }: { userId: string }) => userId === id)?.endsAt;
+    expect(endOf(own)).toBeNull();
+    expect(endOf(borrower)).toBe(`${daysFromToday(4)}T00:00:00.000Z`);
   });
 
   test("names everybody whom the policies let read the record, and nobody else", async () => {
