@@ -45,6 +45,19 @@ export async function lendWorker(
   );
   if (!own) throw unprocessable([issue(["workerId"], "not-in-crew")]);
   await checkLoanFree(worker.id, fromDate, toDate);
+  const away = await row<{ fromDate: string; toDate: string | null }>(
+    `SELECT lower(valid)::text AS "fromDate", (upper(valid) - 1)::text AS "toDate" FROM absence_spans
+     WHERE worker_id = :workerId AND NOT is_struck AND valid && daterange(CAST(:fromDate AS date), CAST(:toDate AS date), '[]')
+     ORDER BY lower(valid) LIMIT 1`,
+    { workerId: worker.id, fromDate, toDate },
+  );
+  if (away)
+    throw unprocessable([
+      issue(["fromDate"], "not-in-then", {
+        fromDate: away.fromDate,
+        ...(away.toDate !== null && { toDate: away.toDate }),
+      }),
+    ]);
   await execute(
     `INSERT INTO crew_memberships (organization_id, crew_id, worker_id, valid, is_loan) VALUES ($1, $2, $3, ${daysFromTo("$4", "$5")}, TRUE)`,
     [actor.organizationId, to.id, worker.id, fromDate, toDate],

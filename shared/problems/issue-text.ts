@@ -321,6 +321,15 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("This is not JSON.");
     case "site-stays":
       return i18n.t("It stays with its site: strike it out and enter it at the other.");
+    case "not-in-then":
+      return params.toDate === undefined
+        ? i18n.t("This person is said not to be in from {from} on. Change that first.", {
+            from: formatDate(String(params.fromDate), localeOf(i18n)),
+          })
+        : i18n.t("This person is said not to be in from {from} to {to}. Change that first.", {
+            from: formatDate(String(params.fromDate), localeOf(i18n)),
+            to: formatDate(String(params.toDate), localeOf(i18n)),
+          });
     case "not-in-crew":
       return i18n.t("This person does not belong to the crew on those days.");
     case "shift-entered":

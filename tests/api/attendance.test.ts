@@ -271,6 +271,25 @@ describe("a supervisor's own people", () => {
     expect(days.body.rows).toMatchObject([{ date: today, ...counts }]);
   });
 
+  test("nobody is lent on days on which they are said not to be in", async () => {
+    const { worker, crew, other, own } = await lay();
+    const away = { fromDate: daysFromToday(2), toDate: daysFromToday(4) };
+    await own.post(`/crews/${crew.id}/absences`, { workerId: worker.id, ...away });
+    const lend = (fromDate: string, toDate: string) =>
+      own.post(`/crews/${crew.id}/loans`, {
+        workerId: worker.id,
+        crewId: other.id,
+        fromDate,
+        toDate,
+      });
+    const refused = await lend(daysFromToday(1), daysFromToday(3));
+    expect(refused.status).toBe(422);
+    expect(refused.body.issues).toMatchObject([
+      { path: ["fromDate"], code: "not-in-then", params: away },
+    ]);
+    expect((await lend(today, daysFromToday(1))).status).toBe(201);
+  });
+
   test("only to a crew in use of the same site, of one's own members", async () => {
     const { site, worker, crew, own } = await lay();
     const elsewhere = await buildSite({ organizationId: site.organizationId });
