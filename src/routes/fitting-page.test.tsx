@@ -660,6 +660,27 @@ describe("the fitting desk", () => {
     expect(within(form).getByLabelText("Reason")).toBeVisible();
   });
 
+  test("a form over a fit says when it is done, and gives the focus back where it came from", async () => {
+    const user = userEvent.setup();
+    const fit = tested({ leftDb: [24], rightDb: [], methodSdDb: 3, bands: null });
+    at = desk({ tests: [fit] });
+    answerIssue = () => ({
+      status: 200,
+      body: FitTestView.parse({ ...fit, isVoid: true, struckReason: "wrong worker" }),
+    });
+    open(paths.fittingOf(worker));
+    const strike = () => screen.findByRole("button", { name: "Strike out the fit of Fenmuff" });
+    await user.click(await strike());
+    const form = () => screen.getByRole("form", { name: "Strike out the fit of Fenmuff" });
+    await user.click(within(form()).getByRole("button", { name: "Leave as it was" }));
+    expect(await strike()).toHaveFocus();
+    await user.click(await strike());
+    await user.type(within(form()).getByRole("textbox"), "wrong worker");
+    await user.click(within(form()).getByRole("button", { name: /^Strike/ }));
+    const said = await screen.findByText("The fit of Fenmuff is struck out.");
+    await waitFor(() => expect(document.activeElement).toContainElement(said));
+  });
+
   test("what is out with the worker says issued, and another one is offered", async () => {
     at = desk({
       tests: [

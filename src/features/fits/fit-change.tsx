@@ -24,8 +24,14 @@ import { TrialCells } from "./trial-cells";
 
 const CorrectionFields = FitFields.extend({ reason: Reason }).check(possibleTrials);
 
+interface ChangeProps {
+  test: FitTestView;
+  onSaved: () => void;
+  onLeave: () => void;
+}
+
 /** What was misread or mistyped. Need and confidence stay those of the day of the test. */
-export function CorrectFit({ test, onDone }: { test: FitTestView; onDone: () => void }) {
+export function CorrectFit({ test, onSaved, onLeave }: ChangeProps) {
   const { i18n } = useLingui();
   const correct = useCorrectFitTest(test);
   const { facts, needDb, confidencePct } = test;
@@ -54,7 +60,7 @@ export function CorrectFit({ test, onDone }: { test: FitTestView; onDone: () => 
             confidencePct,
             facts: factsOf({ leftDb, rightDb, methodSdDb }, facts.bands),
           },
-          { onSuccess: onDone, onError: showFitIssuesOn(form, i18n) },
+          { onSuccess: onSaved, onError: showFitIssuesOn(form, i18n) },
         ),
       )}
     >
@@ -100,13 +106,13 @@ export function CorrectFit({ test, onDone }: { test: FitTestView; onDone: () => 
       <FormProblem error={correct.error} />
       <FormActions>
         <SubmitButton isBusy={correct.isPending}>{i18n.t("Save the correction")}</SubmitButton>
-        <Button onClick={onDone}>{i18n.t("Leave as it was")}</Button>
+        <Button onClick={onLeave}>{i18n.t("Leave as it was")}</Button>
       </FormActions>
     </Form>
   );
 }
 
-export function StrikeFit({ test, onDone }: { test: FitTestView; onDone: () => void }) {
+export function StrikeFit({ test, onSaved, onLeave }: ChangeProps) {
   const { i18n } = useLingui();
   const strike = useVoidFitTest(test);
   const changeKey = useChangeKey();
@@ -118,7 +124,7 @@ export function StrikeFit({ test, onDone }: { test: FitTestView; onDone: () => v
       onSubmit={form.handleSubmit((body) =>
         strike.mutate(
           { body, key: changeKey.keyFor(body) },
-          { onSuccess: onDone, onError: showIssuesOn(form, i18n) },
+          { onSuccess: onSaved, onError: showIssuesOn(form, i18n) },
         ),
       )}
     >
@@ -134,7 +140,7 @@ export function StrikeFit({ test, onDone }: { test: FitTestView; onDone: () => v
       <FormProblem error={strike.error} />
       <FormActions>
         <SubmitButton isBusy={strike.isPending}>{i18n.t("Strike it out")}</SubmitButton>
-        <Button onClick={onDone}>{i18n.t("Leave as it was")}</Button>
+        <Button onClick={onLeave}>{i18n.t("Leave as it was")}</Button>
       </FormActions>
     </Form>
   );

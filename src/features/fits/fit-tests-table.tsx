@@ -8,7 +8,9 @@ import type { FitTestView } from "../../../shared/schemas/fit";
 import { oneEarWord } from "../../../shared/words/register-words";
 import { type DataColumn, DataTable, type DataTableProps } from "../../components/data-table";
 import { TextButton, TextLink } from "../../components/link";
+import { Status } from "../../components/status";
 import { useLocale } from "../../lib/i18n";
+import { useMoveFocus } from "../../lib/move-focus";
 import { paths } from "../../paths";
 import { CorrectFit, StrikeFit } from "./fit-change";
 import {
@@ -37,6 +39,14 @@ export function FitTestsTable({
   const { i18n } = useLingui();
   const locale = useLocale();
   const [changing, setChanging] = useState<{ id: string; how: "correct" | "strike" } | null>(null);
+  const [said, setSaid] = useState("");
+  const [place, moveFocus] = useMoveFocus<HTMLDivElement>();
+  /** The form goes, and the focus on it: to what was done, or back to the button. */
+  const leave = (id: string, how: "correct" | "strike", sentence = "") => {
+    setChanging(null);
+    setSaid(sentence);
+    moveFocus(sentence === "" ? `[data-${how}="${id}"]` : "[data-fit-said]");
+  };
   const changed = table.rows.find(({ id }) => id === changing?.id);
   const canAct = table.rows.some(({ can }) => can.change);
   const device: DataColumn<FitTestView> = {
@@ -161,19 +171,27 @@ export function FitTestsTable({
                   <>
                     {test.parDb !== null && (
                       <TextButton
+                        data-correct={test.id}
                         aria-label={i18n.t("Correct the fit of {protector}", {
                           protector: test.modelName,
                         })}
-                        onClick={() => setChanging({ id: test.id, how: "correct" })}
+                        onClick={() => {
+                          setSaid("");
+                          setChanging({ id: test.id, how: "correct" });
+                        }}
                       >
                         {i18n.t("Correct")}
                       </TextButton>
                     )}
                     <TextButton
+                      data-strike={test.id}
                       aria-label={i18n.t("Strike out the fit of {protector}", {
                         protector: test.modelName,
                       })}
-                      onClick={() => setChanging({ id: test.id, how: "strike" })}
+                      onClick={() => {
+                        setSaid("");
+                        setChanging({ id: test.id, how: "strike" });
+                      }}
                     >
                       {i18n.t("Strike out")}
                     </TextButton>
@@ -186,7 +204,7 @@ export function FitTestsTable({
       : []),
   ];
   return (
-    <>
+    <div ref={place}>
       <DataTable<FitTestView>
         {...table}
         caption={i18n.t("Fit tests, the latest first")}
@@ -196,12 +214,37 @@ export function FitTestsTable({
         stacksOnPhone
       />
       {changed && changing?.how === "correct" && (
-        <CorrectFit key={changed.id} test={changed} onDone={() => setChanging(null)} />
+        <CorrectFit
+          key={changed.id}
+          test={changed}
+          onSaved={() =>
+            leave(
+              changed.id,
+              "correct",
+              i18n.t("The fit of {protector} is corrected.", { protector: changed.modelName }),
+            )
+          }
+          onLeave={() => leave(changed.id, "correct")}
+        />
       )}
       {changed && changing?.how === "strike" && (
-        <StrikeFit key={changed.id} test={changed} onDone={() => setChanging(null)} />
+        <StrikeFit
+          key={changed.id}
+          test={changed}
+          onSaved={() =>
+            leave(
+              changed.id,
+              "strike",
+              i18n.t("The fit of {protector} is struck out.", { protector: changed.modelName }),
+            )
+          }
+          onLeave={() => leave(changed.id, "strike")}
+        />
       )}
-    </>
+      <p className="desk-said" data-fit-said tabIndex={-1}>
+        <Status>{said}</Status>
+      </p>
+    </div>
   );
 }
 

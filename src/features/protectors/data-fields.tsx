@@ -50,7 +50,16 @@ function ActiveFields({ form }: { form: ProtectorForm }) {
   if (!mayBeActive(kind) && !active) return null;
   return (
     <>
-      <Field label={i18n.t("Active part")} error={undefined} isGroup>
+      <Field
+        label={i18n.t("Active part")}
+        error={undefined}
+        note={
+          !active && (kind === "active-earmuff" || kind === "active-plug")
+            ? i18n.t("Without it the device counts as its cup or plug alone.")
+            : undefined
+        }
+        isGroup
+      >
         {() => (
           <label className="choice">
             <input
