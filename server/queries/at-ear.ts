@@ -143,6 +143,7 @@ export async function atEar({ task, inner, outer, worker }: Asked): Promise<AtEa
     whileWorn: {
       offDb: worn?.wornDb ?? null,
       onDb: worn?.wornActiveDb ?? null,
+      mostDb: worn?.wornRangeDb?.mostDb ?? null,
       word: worn?.word ?? null,
       wordOn: worn?.wordActive ?? null,
       reason: worn?.reason ?? null,

@@ -112,6 +112,8 @@ export const AtEarView = z.object({
   whileWorn: z.object({
     offDb: z.number().nullable(),
     onDb: z.number().nullable(),
+    /** With the part off the most that it can be, where an average that left something out only bounds it; null: it is exact. */
+    mostDb: z.number().nullable(),
     word: Word.nullable(),
     wordOn: Word.nullable(),
     reason: z.string().nullable(),

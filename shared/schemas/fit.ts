@@ -157,6 +157,9 @@ export const Candidate = z.object({
   wornIn: z.string().nullable(),
   /** The shift's TWA with it on, where the rule judges the shift. */
   twaDb: z.number().nullable(),
+  /** These are the most that they can be: an average that left something out bounds them. */
+  isWornMost: z.boolean(),
+  isTwaMost: z.boolean(),
   /** EN 458's word beside the rule's, where that has no scale for too much. */
   scaleWord: z
     .enum(["too-little", "just-enough", "good", "strong-side", "too-much", "enough"])

@@ -37,6 +37,8 @@ const candidate = (modelId: string, name: string, kind: string, more: object = {
   scaleWord: null,
   scaleIn: null,
   twaDb: null,
+  isWornMost: false,
+  isTwaMost: false,
   marginDb: 5.2,
   marginSharePct: 95,
   lastFit: null,
@@ -529,13 +531,18 @@ describe("the fitting desk", () => {
     at = desk({
       ruleSetKey: "us-general-industry",
       candidates: [
-        candidate(muff, "Fenmuff", "earmuff", { word: "enough", wornDb: 96.4, twaDb: 75.9 }),
+        candidate(muff, "Fenmuff", "earmuff", {
+          word: "enough",
+          wornDb: 96.4,
+          twaDb: 75.9,
+          isTwaMost: true,
+        }),
       ],
     });
     open(paths.fittingOf(worker));
     const device = await screen.findByLabelText("Device");
-    expect(within(device).getByRole("option")).toHaveTextContent("1. Fenmuff, Enough, 75.9 dB");
-    expect(screen.getByText("Chipping 96.4, shift 75.9")).toBeVisible();
+    expect(within(device).getByRole("option")).toHaveTextContent("1. Fenmuff, Enough, ≤75.9 dB");
+    expect(screen.getByText("Chipping 96.4, shift ≤75.9")).toBeVisible();
   });
 
   test("one kind only, or none left, is said before anything is sent", async () => {

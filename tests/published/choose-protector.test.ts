@@ -303,6 +303,7 @@ describe("several noises", () => {
     expect(found!.twaDb).toBeCloseTo(twa, 9);
     // While worn in the louder one: 100 − (19 − 7).
     expect(found).toMatchObject({ word: "enough", wornDb: 88, wornIn: "100" });
+    expect(found).toMatchObject({ isWornMost: false, isTwaMost: false });
     expect(found!.marginDb).toBeCloseTo(90 - twa, 9);
   });
 
@@ -447,6 +448,9 @@ test("of a noise known as a bound the shift is the most that it can be", () => {
   expect(found!.twaDb).toBeCloseTo(5 * Math.log2(2 ** (97 / 5) + 2 ** (90 / 5)) - 18, 9);
   expect(found!.twaDb).toBeCloseTo(81.3, 1);
   expect(found!.marginDb).toBeCloseTo(90 - found!.twaDb!, 9);
+  // Over eight hours the one task while worn is the shift.
+  expect(found!.wornDb).toBeCloseTo(found!.twaDb!, 9);
+  expect(found).toMatchObject({ isWornMost: true, isTwaMost: true });
 });
 
 describe("a rule that has no word for too much: EN 458's stands beside it", () => {

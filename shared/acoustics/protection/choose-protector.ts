@@ -122,6 +122,9 @@ export interface RankedProtector {
   readonly wornIn: string | null;
   /** By Appendix B: the TWA of all noises with it on, which the word is about. Null under other rules. */
   readonly twaDb: number | null;
+  /** Of an average that left something out these are the most that they can be: while worn, and the TWA. */
+  readonly isWornMost: boolean;
+  readonly isTwaMost: boolean;
   /** EN 458's word beside it where the rule has no scale for too much; null: not asked for, or nothing known. */
   readonly scaleWord: ProtectorWord | null;
   /** The noise that EN 458's word is about. */
@@ -350,10 +353,14 @@ export class ProtectorChoice {
     if (isByShift && !Number.isFinite(wornSum)) return null;
     const twaOf = (sum: number) => levelFactor(law) * Math.log10(sum / law.referenceMin);
     const twaDb = isByShift ? twaOf(wornSum) : null;
+    const { mostShare } = decidingIn!;
     return {
       word:
         twaDb === null ? decidingWord : targetDb === null ? null : appendixBWord(twaDb, targetDb),
-      wornDb: offDb,
+      wornDb:
+        isByShift && mostShare !== 1 ? offDb + levelFactor(law) * Math.log10(mostShare) : offDb,
+      isWornMost: isByShift && mostShare !== 1,
+      isTwaMost: isByShift && noises.some((noise) => noise.mostShare !== 1),
       wornIn: decidingIn!,
       creditedDb: decidingActiveDb,
       twaDb,
@@ -368,8 +375,10 @@ export class ProtectorChoice {
 
 interface AtEar {
   readonly word: ProtectorWord | null;
-  /** Active part off, in the deciding noise. */
+  /** Active part off, in the deciding noise; see `RankedProtector`. */
   readonly wornDb: number;
+  readonly isWornMost: boolean;
+  readonly isTwaMost: boolean;
   readonly wornIn: Noise;
   /** Active part on, where the word is of that; null: it is of the part off. */
   readonly creditedDb: number | null;
@@ -535,6 +544,8 @@ function shownAs(
     isActiveCredited: atEar !== null && atEar.creditedDb !== null,
     wornIn: atEar?.wornIn.name ?? null,
     twaDb: atEar?.twaDb ?? null,
+    isWornMost: atEar?.isWornMost ?? false,
+    isTwaMost: atEar?.isTwaMost ?? false,
     scaleWord: atEar?.scaleWord ?? null,
     scaleIn: atEar?.scaleIn ?? null,
     marginDb: marginOf(judged, hasLower),

@@ -67,7 +67,14 @@ const view = (of: object = {}): AtEarView =>
     ],
     spreadDb: 6,
     isSpreadLarge: true,
-    whileWorn: { offDb: 84, onDb: 80, word: "just-enough", wordOn: "good", reason: null },
+    whileWorn: {
+      offDb: 84,
+      onDb: 80,
+      mostDb: null,
+      word: "just-enough",
+      wordOn: "good",
+      reason: null,
+    },
     limit: { levelDb: 87, kind: "limit" },
     days: [
       {
@@ -127,7 +134,14 @@ test("the band in which the part adds noise is said, with both totals and which 
 test("without a spectrum there is no chart but its reason", () => {
   const seen = view({
     level: { levelDb: 100, lcMinusLaDb: 2, octaveBandsDb: null },
-    whileWorn: { offDb: 84, onDb: null, word: null, wordOn: null, reason: "no-spectrum" },
+    whileWorn: {
+      offDb: 84,
+      onDb: null,
+      mostDb: null,
+      word: null,
+      wordOn: null,
+      reason: "no-spectrum",
+    },
   });
   show(<ActiveInNoise view={seen} active={seen.inner.active!} />);
   expect(screen.getByText("Why: no octave bands were measured.")).toBeTruthy();

@@ -184,6 +184,14 @@ function Lead({ view, onLeaveWorker }: { view: AtEarView; onLeaveWorker: () => v
               })}
         </b>
       )}{" "}
+      {whileWorn.mostDb !== null && (
+        <b>
+          {i18n.t(
+            "The task’s level is an average that left something out: at the ear it can be as much as {most}.",
+            { most: formatLevel(whileWorn.mostDb, locale) },
+          )}
+        </b>
+      )}{" "}
       {ruleSet &&
         i18n.t("{site}: {rules}.", { site: view.task.siteName, rules: i18n._(ruleSet.title) })}
       {worker && (

@@ -106,6 +106,7 @@ export function CandidatesTable({
   const locale = useLocale();
   const [showsAll, setShowsAll] = useState(false);
   const isFolded = foldsOnPhone && !showsAll;
+  const atMost = (db: number, isMost: boolean) => `${isMost ? "≤" : ""}${formatLevel(db, locale)}`;
   const less7 = (db: number) => i18n.t("rating − 7: {level}", { level: formatLevel(db, locale) });
   const columns: DataColumn<Candidate>[] = [
     {
@@ -136,7 +137,17 @@ export function CandidatesTable({
       id: "word",
       head: i18n.t("While worn"),
       unit: "dB",
-      cell: ({ word, wornDb, wornActiveDb, wornIn, twaDb, scaleWord, scaleIn }) => (
+      cell: ({
+        word,
+        wornDb,
+        wornActiveDb,
+        wornIn,
+        twaDb,
+        isWornMost,
+        isTwaMost,
+        scaleWord,
+        scaleIn,
+      }) => (
         <ProtectorWord
           word={word}
           beneath={
@@ -144,13 +155,13 @@ export function CandidatesTable({
               ? undefined
               : [
                   wornActiveDb === null
-                    ? `${wornIn ?? ""} ${formatLevel(wornDb, locale)}`.trim()
+                    ? `${wornIn ?? ""} ${atMost(wornDb, isWornMost)}`.trim()
                     : i18n.t("{task} {off}, with the active part on {on}", {
                         task: wornIn ?? "",
-                        off: formatLevel(wornDb, locale),
-                        on: formatLevel(wornActiveDb, locale),
+                        off: atMost(wornDb, isWornMost),
+                        on: atMost(wornActiveDb, isWornMost),
                       }),
-                  twaDb !== null && i18n.t("shift {twa}", { twa: formatLevel(twaDb, locale) }),
+                  twaDb !== null && i18n.t("shift {twa}", { twa: atMost(twaDb, isTwaMost) }),
                   scaleWord !== null &&
                     i18n.t("by EN 458 {word} in {task}", {
                       word: withinSentence(protectorWordText(i18n, scaleWord), locale),

@@ -180,6 +180,10 @@ export function judgedByWord(
 export const judgedDb = ({ twaDb, wornDb, wornActiveDb, isActiveCredited }: Candidate) =>
   twaDb ?? (isActiveCredited ? wornActiveDb : wornDb);
 
+/** That level is the most that it can be. */
+export const judgedIsMost = ({ twaDb, isTwaMost, isWornMost }: Candidate): boolean =>
+  twaDb === null ? isWornMost : isTwaMost;
+
 /** Why no need is stated, or what it rests on. */
 export function needReasonText(i18n: I18n, reason: string | null): string | null {
   switch (reason) {
