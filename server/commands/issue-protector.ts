@@ -119,6 +119,8 @@ async function check(
   const bar = (await barsAtDesk(actor, worker, modelId)).issue;
   if (bar) issues.push(issue(["modelId"], barCode(bar)));
   if (fit && !isOfThis(fit, worker, input)) issues.push(issue(["fitTestId"], "fit-of-another"));
+  if (fit && issuedOn < fit.testedOn)
+    issues.push(issue(["issuedOn"], "before-its-fit", { testedOn: fit.testedOn }));
   if (issues.length > 0) throw unprocessable(issues);
 }
 
@@ -126,6 +128,7 @@ interface FitBehind {
   workerId: string;
   modelId: string;
   size: string | null;
+  testedOn: string;
   isVoid: boolean;
   hasPassed: boolean | null;
   needDb: number | null;
@@ -133,7 +136,7 @@ interface FitBehind {
 
 async function fitOf(actor: Actor, fitTestId: string): Promise<FitBehind> {
   const test = await row<FitBehind>(
-    `SELECT f.worker_id AS "workerId", f.model_id AS "modelId", v.size, f.is_void AS "isVoid", ${pairPassed("v")} AS "hasPassed",
+    `SELECT f.worker_id AS "workerId", f.model_id AS "modelId", v.size, f.tested_on::text AS "testedOn", f.is_void AS "isVoid", ${pairPassed("v")} AS "hasPassed",
        v.need_db AS "needDb"
      FROM fit_tests f JOIN fit_test_revisions v ON v.id = f.current_revision_id
      WHERE f.id = :fitTestId AND ${visible(fitPolicy, actor, "f")}`,

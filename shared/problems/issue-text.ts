@@ -161,6 +161,10 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
       return i18n.t("This code does not work (any more). Ask for a new one.");
     case "date-in-future":
       return i18n.t("This date lies ahead.");
+    case "before-its-fit":
+      return i18n.t("The fit was tested on {date}: on it the device goes out that day or later.", {
+        date: formatDate(String(params.testedOn), localeOf(i18n)),
+      });
     case "before-hire":
       return i18n.t("This worker was hired later than that.");
     case "shift-after-leaving":

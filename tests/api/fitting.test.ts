@@ -912,6 +912,19 @@ describe("an issue", () => {
     expect(await assignmentsOf(worker)).toEqual([]);
   });
 
+  test("a device goes out on a fit no earlier than that was tested", async () => {
+    const desk = await openDesk();
+    const { muff, plug } = desk;
+    const tested = (await record(desk, fitBody(muff.id))).body;
+    const on = (issuedOn: string) =>
+      issue(desk, issueOf(muff.id, [muff.id, plug.id], { fitTestId: tested.id, issuedOn }));
+    const early = await on(daysFromToday(-1));
+    expect(early.body.issues).toMatchObject([
+      { path: ["issuedOn"], code: "before-its-fit", params: { testedOn: today } },
+    ]);
+    expect((await on(today)).status).toBe(201);
+  });
+
   test("one kind only, or none in stock, needs a reason, which only officers read", async () => {
     const desk = await openDesk();
     const { worker, muff, plug, site } = desk;
