@@ -688,6 +688,40 @@ describe("the fitting desk", () => {
     await waitFor(() => expect(document.activeElement).toContainElement(said));
   });
 
+  test("what is assigned and cannot be worn is named as such", async () => {
+    const assigned = {
+      taskId: null,
+      areaId: null,
+      innerModelId: muff,
+      outerModelId: null,
+      size: null,
+      name: "Fenmuff",
+      fromDate: "2026-03-02",
+      toDate: null,
+    };
+    const lay = (excludedBy: FittingDesk["candidates"][number]["excludedBy"]) =>
+      desk({
+        assigned: [assigned],
+        candidates: [
+          candidate(plug, "Alder foam", "foam-plug"),
+          candidate(muff, "Fenmuff", "earmuff", { excludedBy }),
+        ],
+      });
+    at = lay(null);
+    const page = open(paths.fittingOf(worker));
+    await screen.findByRole("form", { name: "Test the fit" });
+    expect(screen.queryByText(/who cannot wear it/)).toBeNull();
+    page.unmount();
+    at = lay({ code: "cannot-wear", gear: null });
+    open(paths.fittingOf(worker));
+    expect(
+      await screen.findByText(
+        "Fenmuff is assigned to this worker, who cannot wear it. Issue another.",
+      ),
+    ).toBeVisible();
+    expect(screen.getByText("this worker cannot wear it")).toBeVisible();
+  });
+
   test("what is out with the worker says issued, and another one is offered", async () => {
     at = desk({
       tests: [

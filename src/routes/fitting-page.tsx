@@ -156,6 +156,7 @@ function AtDesk({
         </span>
       </h2>
       <Need desk={desk} />
+      <Unwearable desk={desk} today={today} />
       <div className="desk-try">
         {can.test && (
           <Section title={i18n.t("Test the fit")} id="fit">
@@ -383,6 +384,23 @@ function OnWhichFit({ device: { fit } }: { device: ToIssue }) {
       {i18n.t("PAR {par} dB, {need} needed. Fit it anew, or try another.", values)}
     </p>
   );
+}
+
+/** What is assigned and was since said to be no good on this worker: nothing else asks for another. */
+function Unwearable({ desk, today }: { desk: FittingDesk; today: string }) {
+  const { i18n } = useLingui();
+  const isBarred = (modelId: string | null) =>
+    desk.candidates.find((one) => one.modelId === modelId)?.excludedBy?.code === "cannot-wear";
+  return desk.assigned
+    .filter(({ toDate }) => toDate === null || toDate >= today)
+    .filter(({ innerModelId, outerModelId }) => isBarred(innerModelId) || isBarred(outerModelId))
+    .map(({ name, taskId, areaId, fromDate }) => (
+      <p key={`${name} ${taskId} ${areaId} ${fromDate}`} className="desk-unwearable">
+        {i18n.t("{protector} is assigned to this worker, who cannot wear it. Issue another.", {
+          protector: name,
+        })}
+      </p>
+    ));
 }
 
 function Need({ desk: { need, worker } }: { desk: FittingDesk }) {
