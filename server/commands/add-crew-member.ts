@@ -6,6 +6,7 @@ import { execute, rows } from "../lib/db";
 import { issue, unprocessable } from "../lib/errors";
 import type { Actor } from "../lib/policy";
 import type { Crew, Worker } from "../models/worker";
+import { isOwnRunningOn } from "../queries/attendance";
 import { checkLoanFree } from "./lend-worker";
 
 /** Somebody new in a crew. Of the crews of their own they are in one at a time: an earlier one ends the day before. */
@@ -28,8 +29,7 @@ export async function addCrewMember(
     ? []
     : await rows<{ crewId: string }>(
         `UPDATE crew_memberships m SET valid = daterange(lower(m.valid), CAST(:fromDate AS date)), revision = m.revision + 1
-         WHERE m.worker_id = :workerId AND m.crew_id <> :crewId AND NOT m.is_loan AND lower(m.valid) < CAST(:fromDate AS date)
-           AND (upper_inf(m.valid) OR upper(m.valid) > CAST(:fromDate AS date)) RETURNING m.crew_id AS "crewId"`,
+         WHERE m.crew_id <> :crewId AND ${isOwnRunningOn("m", ":workerId", "CAST(:fromDate AS date)")} RETURNING m.crew_id AS "crewId"`,
         { workerId: worker.id, crewId: crew.id, fromDate },
       );
   await execute("UPDATE crews SET revision = revision + 1 WHERE id = ANY ($1::uuid[])", [

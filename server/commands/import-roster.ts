@@ -16,6 +16,7 @@ import { AppError } from "../lib/errors";
 import { leavesNobodyToAdminister } from "../lib/grants";
 import type { Actor } from "../lib/policy";
 import type { Site } from "../models/site";
+import { isOwnRunningOn } from "../queries/attendance";
 
 const ISSUES_SHOWN = 500;
 const PEOPLE_SHOWN = 500;
@@ -126,7 +127,7 @@ async function store(actor: Actor, site: Site, entries: readonly Placed[]): Prom
   const moveColumns = `x("workerId" uuid, "crewId" uuid, "fromDate" date)`;
   await execute(
     `UPDATE crew_memberships m SET valid = daterange(lower(m.valid), x."fromDate") FROM jsonb_to_recordset($1::jsonb) AS ${moveColumns}
-     WHERE m.worker_id = x."workerId" AND NOT m.is_loan AND lower(m.valid) < x."fromDate" AND (upper_inf(m.valid) OR upper(m.valid) > x."fromDate")`,
+     WHERE ${isOwnRunningOn("m", 'x."workerId"', 'x."fromDate"')}`,
     [JSON.stringify(moves)],
   );
   await execute(

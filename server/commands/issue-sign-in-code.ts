@@ -9,7 +9,10 @@ import type { Worker } from "../models/worker";
 const alphabet = "ABCDEFGHJKLMNPQRSTUVWXYZ23456789";
 const validDays = 30;
 
-/** A code that binds a sign-in to the worker, once; who left keeps the right to the own records. Only its hash is kept; an older one that was not used ends here. */
+/**
+ * A code that binds a sign-in to the worker, once; who left keeps the right to the own records. Only its hash is kept; an
+ * older one that was not used ends here.
+ */
 export async function issueSignInCode(
   actor: Actor,
   worker: Worker,

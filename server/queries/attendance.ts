@@ -17,6 +17,10 @@ export const isLentOn = (m: string, date: string): string =>
   `(NOT ${m}.is_loan AND EXISTS (SELECT 1 FROM crew_memberships l
     WHERE l.worker_id = ${m}.worker_id AND l.is_loan AND l.crew_id <> ${m}.crew_id AND l.valid @> ${date}))`;
 
+/** SQL: the membership `m` is the worker's own, began before a day and runs on it: it ends where another begins. */
+export const isOwnRunningOn = (m: string, worker: string, date: string): string =>
+  `(${m}.worker_id = ${worker} AND NOT ${m}.is_loan AND lower(${m}.valid) < ${date} AND (upper_inf(${m}.valid) OR upper(${m}.valid) > ${date}))`;
+
 const dates = (range: string) =>
   `lower(${range})::text AS "fromDate", (upper(${range}) - 1)::text AS "toDate"`;
 

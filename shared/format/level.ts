@@ -20,8 +20,12 @@ export function formatLevel(
   return `${BOUND_MARK[bound]}${formatNumber(levelDb, digits, locale)}`;
 }
 
-export function formatLevelWithUnit(levelDb: number | null, locale: Locale): string {
-  return levelDb === null ? NO_FIGURE : `${formatLevel(levelDb, locale)}\u00a0dB`;
+export function formatLevelWithUnit(
+  levelDb: number | null,
+  locale: Locale,
+  bound: LevelBound = "exact",
+): string {
+  return levelDb === null ? NO_FIGURE : `${formatLevel(levelDb, locale, bound)}\u00a0dB`;
 }
 
 /** Whole decibels, for the worker's own page; with a tenth where it would read as the limit that it is not at. */

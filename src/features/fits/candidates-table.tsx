@@ -1,5 +1,6 @@
 import { useLingui } from "@lingui/react";
 import { useState } from "react";
+import { barToTrial } from "../../../shared/acoustics/protection/barred";
 import { formatDuration } from "../../../shared/format/duration";
 import { formatLevel, formatLevelChange } from "../../../shared/format/level";
 import { withinSentence } from "../../../shared/format/words";
@@ -106,7 +107,8 @@ export function CandidatesTable({
   const locale = useLocale();
   const [showsAll, setShowsAll] = useState(false);
   const isFolded = foldsOnPhone && !showsAll;
-  const atMost = (db: number, isMost: boolean) => `${isMost ? "≤" : ""}${formatLevel(db, locale)}`;
+  const atMost = (db: number, isMost: boolean) =>
+    formatLevel(db, locale, isMost ? "upper" : "exact");
   const less7 = (db: number) => i18n.t("rating − 7: {level}", { level: formatLevel(db, locale) });
   const columns: DataColumn<Candidate>[] = [
     {
@@ -235,9 +237,7 @@ export function CandidatesTable({
       cell: (row) => {
         const wires = { "aria-label": pickLabel?.(row.name), onClick: () => onPick?.(row) };
         if (row.excludedBy === null) return <Button {...wires}>{pickWord}</Button>;
-        return row.excludedBy.code === "no-data" || row.excludedBy.code === "cannot-wear" ? (
-          <TextButton {...wires}>{pickWord}</TextButton>
-        ) : null;
+        return barToTrial(row) === null ? <TextButton {...wires}>{pickWord}</TextButton> : null;
       },
     });
   return (

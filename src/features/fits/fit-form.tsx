@@ -24,7 +24,7 @@ import { useOneAtATime } from "../../lib/one-at-a-time";
 import { DESK_METHODS, FitFields, factsOf, possibleTrials, trialsTyped } from "./fit-fields";
 import { showFitIssuesOn } from "./fit-issues";
 import { FitRatingLine } from "./fit-rating-line";
-import { fitMethodWord, judgedDb, judgedIsMost } from "./fit-words";
+import { fitMethodWord, judgedBound, judgedDb } from "./fit-words";
 import { METHOD_SD_DB } from "./method-sd";
 import { useRecordFitTest } from "./queries";
 import { TrialCells } from "./trial-cells";
@@ -122,7 +122,7 @@ export function FitForm({
         ? exclusionWord(i18n, candidate.excludedBy)
         : candidate.word && protectorWordText(i18n, candidate.word),
       judgedDb(candidate) !== null &&
-        `${judgedIsMost(candidate) ? "≤" : ""}${formatLevelWithUnit(judgedDb(candidate), locale)}`,
+        formatLevelWithUnit(judgedDb(candidate), locale, judgedBound(candidate)),
     ]
       .filter(Boolean)
       .join(", ");

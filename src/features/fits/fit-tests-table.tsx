@@ -41,11 +41,15 @@ export function FitTestsTable({
   const [changing, setChanging] = useState<{ id: string; how: "correct" | "strike" } | null>(null);
   const [said, setSaid] = useState("");
   const [place, moveFocus] = useMoveFocus<HTMLDivElement>();
+  const open = (id: string, how: "correct" | "strike") => {
+    setSaid("");
+    setChanging({ id, how });
+  };
   /** The form goes, and the focus on it: to what was done, or back to the button. */
-  const leave = (id: string, how: "correct" | "strike", sentence = "") => {
+  const leave = (sentence: string) => {
     setChanging(null);
     setSaid(sentence);
-    moveFocus(sentence === "" ? `[data-${how}="${id}"]` : "[data-fit-said]");
+    moveFocus(sentence === "" ? `[data-${changing?.how}="${changing?.id}"]` : "[data-fit-said]");
   };
   const changed = table.rows.find(({ id }) => id === changing?.id);
   const canAct = table.rows.some(({ can }) => can.change);
@@ -175,10 +179,7 @@ export function FitTestsTable({
                         aria-label={i18n.t("Correct the fit of {protector}", {
                           protector: test.modelName,
                         })}
-                        onClick={() => {
-                          setSaid("");
-                          setChanging({ id: test.id, how: "correct" });
-                        }}
+                        onClick={() => open(test.id, "correct")}
                       >
                         {i18n.t("Correct")}
                       </TextButton>
@@ -188,10 +189,7 @@ export function FitTestsTable({
                       aria-label={i18n.t("Strike out the fit of {protector}", {
                         protector: test.modelName,
                       })}
-                      onClick={() => {
-                        setSaid("");
-                        setChanging({ id: test.id, how: "strike" });
-                      }}
+                      onClick={() => open(test.id, "strike")}
                     >
                       {i18n.t("Strike out")}
                     </TextButton>
@@ -218,13 +216,9 @@ export function FitTestsTable({
           key={changed.id}
           test={changed}
           onSaved={() =>
-            leave(
-              changed.id,
-              "correct",
-              i18n.t("The fit of {protector} is corrected.", { protector: changed.modelName }),
-            )
+            leave(i18n.t("The fit of {protector} is corrected.", { protector: changed.modelName }))
           }
-          onLeave={() => leave(changed.id, "correct")}
+          onLeave={() => leave("")}
         />
       )}
       {changed && changing?.how === "strike" && (
@@ -232,13 +226,9 @@ export function FitTestsTable({
           key={changed.id}
           test={changed}
           onSaved={() =>
-            leave(
-              changed.id,
-              "strike",
-              i18n.t("The fit of {protector} is struck out.", { protector: changed.modelName }),
-            )
+            leave(i18n.t("The fit of {protector} is struck out.", { protector: changed.modelName }))
           }
-          onLeave={() => leave(changed.id, "strike")}
+          onLeave={() => leave("")}
         />
       )}
       <p className="desk-said" data-fit-said tabIndex={-1}>

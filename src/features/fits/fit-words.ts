@@ -1,6 +1,7 @@
 import type { I18n } from "@lingui/core";
 import { hasToPass } from "../../../shared/acoustics/protection/fit-rating";
 import { formatShortDate } from "../../../shared/format/date";
+import type { LevelBound } from "../../../shared/format/level";
 import { startsSentence } from "../../../shared/format/words";
 import type { Locale } from "../../../shared/i18n/index";
 import type {
@@ -180,9 +181,8 @@ export function judgedByWord(
 export const judgedDb = ({ twaDb, wornDb, wornActiveDb, isActiveCredited }: Candidate) =>
   twaDb ?? (isActiveCredited ? wornActiveDb : wornDb);
 
-/** That level is the most that it can be. */
-export const judgedIsMost = ({ twaDb, isTwaMost, isWornMost }: Candidate): boolean =>
-  twaDb === null ? isWornMost : isTwaMost;
+export const judgedBound = ({ twaDb, isTwaMost, isWornMost }: Candidate): LevelBound =>
+  (twaDb === null ? isWornMost : isTwaMost) ? "upper" : "exact";
 
 /** Why no need is stated, or what it rests on. */
 export function needReasonText(i18n: I18n, reason: string | null): string | null {

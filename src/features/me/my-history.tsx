@@ -1,7 +1,7 @@
 import { useLingui } from "@lingui/react";
 import { useId, useState } from "react";
 import { formatMonth, formatShortDate } from "../../../shared/format/date";
-import { formatWholeLevel } from "../../../shared/format/level";
+import { BOUND_MARK, formatWholeLevel } from "../../../shared/format/level";
 import { Empty } from "../../components/empty";
 import { HistoryChart, type HistoryMark } from "../../components/history-chart";
 import { TextButton, TextLink } from "../../components/link";
@@ -18,7 +18,6 @@ const LONGEST_BY_DAY = 100;
 /** With more, a figure at the highest would stand in the crowd. */
 const MOST_OVER_WITH_NOTE = 3;
 const ROWS_AT_ONCE = 20;
-const BOUND_SIGNS = { exact: "", lower: "≥", upper: "≤" };
 
 const daysBetween = (from: string, to: string) => (Date.parse(to) - Date.parse(from)) / 86_400_000;
 
@@ -113,11 +112,11 @@ export function MyHistory({
                     </TextLink>
                   </th>
                   <td className="is-figure">
-                    {day.atEarDb !== null && BOUND_SIGNS[day.atEarBound]}
+                    {day.atEarDb !== null && BOUND_MARK[day.atEarBound]}
                     {formatWholeLevel(day.atEarDb, locale, limitDb)}
                   </td>
                   <td className="is-figure">
-                    {day.outsideDb !== null && BOUND_SIGNS[day.outsideBound]}
+                    {day.outsideDb !== null && BOUND_MARK[day.outsideBound]}
                     {formatWholeLevel(day.outsideDb, locale)}
                   </td>
                   <td>{limitDb !== null && <Verdict verdict={day.verdictAtEar} />}</td>

@@ -4,7 +4,7 @@ import type { MappingList, MappingView } from "../../../shared/schemas/group-map
 import type { SiteList } from "../../../shared/schemas/site";
 import type { UserList, UserView } from "../../../shared/schemas/user";
 import type { VisitorList, VisitorView } from "../../../shared/schemas/visitor";
-import type { SignInCodeView, WorkerNameList } from "../../../shared/schemas/worker";
+import type { SignInCodeView, WorkerName, WorkerNameList } from "../../../shared/schemas/worker";
 import type { Choice } from "../../components/form";
 import { api, newChangeKey } from "../../lib/api";
 import { useOneAtATime } from "../../lib/one-at-a-time";
@@ -47,40 +47,32 @@ export const peopleQueries = {
   }),
 };
 
-/** Those of a site who are there and those who left, to hold their records. */
-export const searchPresentAndFormer =
-  (siteId: string, leftWord: (date: string) => string) =>
-  async (search: string, signal: AbortSignal): Promise<readonly Choice[]> => {
-    if (search.trim() === "") return [];
-    const { rows } = await api.get("/worker-names", {
-      query: { search: search.trim(), siteId, who: "all" },
-      schema: ownReply<z.infer<typeof WorkerNameList>>("rows"),
-      signal,
-    });
-    return rows.map(({ id, name, employeeNumber, leftOn }) => ({
-      value: id,
-      label: name,
-      note: leftOn === null ? employeeNumber : `${employeeNumber}, ${leftWord(leftOn)}`,
-    }));
-  };
-
-/** Workers by name or number, to link a sign-in to. */
-export async function searchWorkers(
+/** Workers by name or number; of each what stands beneath the name. */
+async function findWorkers(
   search: string,
   signal: AbortSignal,
+  filter: { siteId?: string; who?: "present" | "all" },
+  noteOf: (worker: WorkerName) => string,
 ): Promise<readonly Choice[]> {
   if (search.trim() === "") return [];
   const { rows } = await api.get("/worker-names", {
-    query: { search: search.trim() },
+    query: { search: search.trim(), ...filter },
     schema: ownReply<z.infer<typeof WorkerNameList>>("rows"),
     signal,
   });
-  return rows.map(({ id, name, employeeNumber }) => ({
-    value: id,
-    label: name,
-    note: employeeNumber,
-  }));
+  return rows.map((worker) => ({ value: worker.id, label: worker.name, note: noteOf(worker) }));
 }
+
+/** To link a sign-in to. */
+export const searchWorkers = (search: string, signal: AbortSignal) =>
+  findWorkers(search, signal, {}, ({ employeeNumber }) => employeeNumber);
+
+/** Those of a site who are there and those who left, to hold their records. */
+export const searchPresentAndFormer =
+  (siteId: string, leftWord: (date: string) => string) => (search: string, signal: AbortSignal) =>
+    findWorkers(search, signal, { siteId, who: "all" }, ({ employeeNumber, leftOn }) =>
+      leftOn === null ? employeeNumber : `${employeeNumber}, ${leftWord(leftOn)}`,
+    );
 
 export function useEndAccess(id: string, onEnded: () => void) {
   const client = useQueryClient();
