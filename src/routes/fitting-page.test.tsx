@@ -164,7 +164,11 @@ beforeEach(() => {
     const body = JSON.parse(String(init.body));
     sent.push({ path, body, key: new Headers(init.headers).get("idempotency-key") });
     if (path.endsWith("/fit-tests")) {
-      const test = tested(body.facts, { modelId: body.modelId, hasPassed });
+      const test = tested(body.facts, {
+        modelId: body.modelId,
+        testedOn: body.testedOn,
+        hasPassed,
+      });
       at = desk({ tests: [test] });
       return Response.json(FitTestView.parse(test), { status: 201 });
     }
@@ -412,6 +416,21 @@ describe("the fitting desk", () => {
     await waitFor(() => expect(trial("Left ear")).toHaveFocus());
     expect(trial("Left ear")).toHaveValue("");
     expect(sent).toHaveLength(1);
+  });
+
+  test("a fit from paper is recorded with its own day, and the device goes out with it", async () => {
+    const user = userEvent.setup();
+    open(paths.fittingOf(worker));
+    const form = await screen.findByRole("form", { name: "Test the fit" });
+    fireEvent.change(within(form).getByLabelText("Tested on"), { target: { value: "2026-11-17" } });
+    const left = within(form).getByRole("group", { name: "Left ear" });
+    const right = within(form).getByRole("group", { name: "Right ear" });
+    await user.type(within(left).getByLabelText("Trial 1"), "24");
+    await user.type(within(right).getByLabelText("Trial 1"), "22");
+    await user.click(within(form).getByRole("button", { name: "Record the fit" }));
+    const issue = await screen.findByRole("form", { name: "Issue Fenmuff" });
+    expect(sent[0]?.body).toMatchObject({ testedOn: "2026-11-17" });
+    expect(within(issue).getByLabelText("Issued")).toHaveValue("2026-11-17");
   });
 
   test("each trial that no ear can have is marked once, at its ear, and nothing is sent", async () => {

@@ -279,6 +279,9 @@ describe("from a reading over the limit to a year that proves itself", () => {
     const { candidates } = await ask<{ candidates: Candidate[] }>(`/workers/${workerId}/fitting`);
     const { modelId = "", stock = 0 } = candidates.find(({ name }) => name === REFIT) ?? {};
     await form.getByLabel("Device").selectOption(modelId);
+    const testedOn = form.getByLabel("Tested on");
+    await testedOn.fill(refit);
+    await testedOn.blur();
     const trials = { "Left ear": ["26", "27", "26.5"], "Right ear": ["27", "25.5", "26"] };
     for (const [ear, values] of Object.entries(trials))
       for (const [place, value] of values.entries())
@@ -290,9 +293,7 @@ describe("from a reading over the limit to a year that proves itself", () => {
     const issue = page.getByRole("form", { name: `Issue ${REFIT}` });
     await issue.getByRole("checkbox", { name: "Alder foam" }).check();
     await issue.getByRole("checkbox", { name: /^How to put it on/ }).check();
-    const on = issue.getByLabel("Issued");
-    await on.fill(refit);
-    await on.blur();
+    expect(await issue.getByLabel("Issued").inputValue()).toBe(refit);
     await issue.getByRole("button", { name: "Issue this" }).click();
     await page.getByText(`${REFIT} is issued to ${WORKER}; ${stock - 1} left in stock.`).waitFor();
     await computed();

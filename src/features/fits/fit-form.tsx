@@ -6,6 +6,7 @@ import { formatLevelWithUnit } from "../../../shared/format/level";
 import type { Candidate, FitTestView, FittingDesk } from "../../../shared/schemas/fit";
 import { exclusionWord } from "../../../shared/words/register-words";
 import {
+  DateField,
   Form,
   FormActions,
   NumberField,
@@ -29,17 +30,19 @@ import { METHOD_SD_DB } from "./method-sd";
 import { useRecordFitTest } from "./queries";
 import { TrialCells } from "./trial-cells";
 
-const DeskFields = FitFields.extend({ modelId: z.uuid() }).check((context) => {
-  possibleTrials(context);
-  const { leftDb, rightDb } = context.value;
-  if (leftDb.length + rightDb.length === 0)
-    context.issues.push({
-      code: "custom",
-      input: leftDb,
-      path: ["leftDb"],
-      params: { code: "no-trial" },
-    });
-});
+const DeskFields = FitFields.extend({ modelId: z.uuid(), testedOn: z.iso.date() }).check(
+  (context) => {
+    possibleTrials(context);
+    const { leftDb, rightDb } = context.value;
+    if (leftDb.length + rightDb.length === 0)
+      context.issues.push({
+        code: "custom",
+        input: leftDb,
+        path: ["leftDb"],
+        params: { code: "no-trial" },
+      });
+  },
+);
 
 export interface FitFormHandle {
   choose(modelId: string): void;
@@ -76,6 +79,7 @@ export function FitForm({
     defaultValues: {
       modelId: triable[0]?.modelId ?? "",
       size: null,
+      testedOn: today,
       method: "psychophysical",
       methodSdDb: METHOD_SD_DB.psychophysical,
       leftDb: [],
@@ -129,13 +133,13 @@ export function FitForm({
 
   const submit = form.handleSubmit((filled) => {
     if (!begin()) return;
-    const { modelId, size, method, note } = filled;
+    const { modelId, size, testedOn, method, note } = filled;
     const body = {
       modelId,
       size,
       method,
       note,
-      testedOn: today,
+      testedOn,
       facts: factsOf(filled),
       confidencePct,
       needDb,
@@ -177,6 +181,7 @@ export function FitForm({
       ) : (
         <TextField form={form} name="size" label={i18n.t("Size")} isOptional />
       )}
+      <DateField form={form} name="testedOn" label={i18n.t("Tested on")} />
       <SelectField
         form={form}
         name="method"

@@ -115,8 +115,10 @@ export function IssueForm({
   const tasks = useQuery(references.tasks(siteId));
   const areas = useQuery(references.areas(siteId));
   const candidate = desk.candidates.find(({ modelId }) => modelId === device.modelId);
+  // A fit of an earlier day is one from paper: the device went out with it.
+  const issuedOn = device.fit?.testedOn ?? today;
   const tried = desk.tests
-    .filter(({ isVoid, testedOn }) => !isVoid && testedOn === today)
+    .filter(({ isVoid, testedOn }) => !isVoid && testedOn === issuedOn)
     .map(({ modelId }) => modelId);
   const fields = useMemo(() => fieldsAt(desk, device), [desk, device]);
   const form = useSchemaForm(fields, {
@@ -128,7 +130,7 @@ export function IssueForm({
       wasInstructed: false,
       isAcknowledged: false,
       reason: "",
-      issuedOn: today,
+      issuedOn,
     },
   });
   const offered = form.watch("offeredModelIds");
