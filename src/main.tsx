@@ -1,6 +1,7 @@
 import { QueryClientProvider } from "@tanstack/react-query";
 import { StrictMode } from "react";
 import { createRoot } from "react-dom/client";
+import { watchRoles } from "./features/session/session";
 import { watchConnection } from "./lib/connection";
 import { LanguageProvider, startI18n } from "./lib/i18n";
 import { createQueryClient } from "./lib/query-client";
@@ -15,6 +16,7 @@ async function start() {
   const i18n = await startI18n();
   const queryClient = createQueryClient();
   watchConnection(queryClient);
+  watchRoles(queryClient);
   const routes = createRoutes(queryClient, i18n);
   createRoot(root).render(
     <StrictMode>

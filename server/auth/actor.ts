@@ -15,12 +15,13 @@ interface UserRow {
   employerGrants: EmployerGrant[];
   /** When the last of the grants that ended by themselves did. */
   endedAt: Date | null;
+  isRevoked: boolean;
 }
 
 /**
  * The person behind a session, as granted at this moment: a revoked grant or user is gone at the next request.
  *
- * @throws AppError signed-out; access-ended where the last grant ended by itself
+ * @throws AppError signed-out; access-ended where the last grant ended by itself; access-taken where somebody took it
  */
 export async function loadActor(userId: string, epoch: number): Promise<Actor> {
   const user = await row<UserRow>(
@@ -29,13 +30,14 @@ export async function loadActor(userId: string, epoch: number): Promise<Actor> {
                  WHERE g.user_id = u.id AND g.role <> 'employer' AND ${inForce("g")}), '[]') AS grants,
        coalesce((SELECT json_agg(json_build_object('id', g.id, 'siteId', g.site_id)) FROM role_grants g
                  WHERE g.user_id = u.id AND g.role = 'employer' AND ${inForce("g")}), '[]') AS "employerGrants",
-       ${lastEnd("u")} AS "endedAt"
-     FROM users u WHERE u.id = :userId AND u.revoked_at IS NULL`,
+       ${lastEnd("u")} AS "endedAt", u.revoked_at IS NOT NULL AS "isRevoked"
+     FROM users u WHERE u.id = :userId`,
     { userId },
   );
+  if (user?.isRevoked) throw new AppError("access-taken", 401);
   if (!user || user.sessionEpoch !== epoch) throw new AppError("signed-out", 401);
   if (user.grants.length + user.employerGrants.length === 0)
-    throw new AppError(user.endedAt === null ? "signed-out" : "access-ended", 401);
+    throw new AppError(user.endedAt === null ? "access-taken" : "access-ended", 401);
   return new Actor(
     user.id,
     user.organizationId,

@@ -232,11 +232,13 @@ export function defineAuthRoutes(provider: Provider): void {
           error instanceof AppError ? error.code : null,
         );
         if (!(actor instanceof Actor)) {
-          const left = actor === "access-ended" ? await leftBehind(userId) : null;
+          const left =
+            actor === "access-ended" || actor === "access-taken" ? await leftBehind(userId) : null;
+          const end = left?.endedAt ?? left?.takenAt;
           return {
             user: null,
             pendingName: left?.name ?? null,
-            endedAt: left?.endedAt?.toISOString() ?? null,
+            endedAt: end?.toISOString() ?? null,
           };
         }
         const organization = await row<{ name: string }>(
@@ -279,12 +281,14 @@ interface Held {
   name: string;
   isGranted: boolean;
   endedAt: Date | null;
+  takenAt: Date | null;
 }
 
-/** Whether anything granted to a user counts, and when the last of what was for a time ended. */
+/** Whether anything granted to a user counts, when the last of what was for a time ended, and when somebody took the last. */
 const leftBehind = (userId: string): Promise<Held | null> =>
   row<Held>(
-    `SELECT u.name, EXISTS (SELECT 1 FROM role_grants g WHERE g.user_id = u.id AND ${inForce("g")}) AS "isGranted", ${lastEnd("u")} AS "endedAt"
+    `SELECT u.name, EXISTS (SELECT 1 FROM role_grants g WHERE g.user_id = u.id AND ${inForce("g")}) AS "isGranted", ${lastEnd("u")} AS "endedAt",
+       coalesce(u.revoked_at, (SELECT max(g.revoked_at) FROM role_grants g WHERE g.user_id = u.id)) AS "takenAt"
      FROM users u WHERE u.id = :userId`,
     { userId },
   );

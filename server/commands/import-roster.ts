@@ -17,6 +17,7 @@ import { leavesNobodyToAdminister } from "../lib/grants";
 import type { Actor } from "../lib/policy";
 import type { Site } from "../models/site";
 import { isOwnRunningOn } from "../queries/attendance";
+import { endWithLeaving } from "./end-with-leaving";
 
 const ISSUES_SHOWN = 500;
 const PEOPLE_SHOWN = 500;
@@ -27,8 +28,9 @@ type Placed = RosterEntry & { id: string };
  * Joiners, movers and leavers of a site from a file, by employee number: all of it or nothing. A dry run says line by line
  * what stands in the way, who would join, change and leave, and what has to be confirmed.
  *
- * @throws AppError import-refused with the report, where a line has a fault; roster-unconfirmed, where half of the people
- * or the last administrator would leave and nobody confirmed how many; nothing-to-do.
+ * @throws AppError import-refused with the report, where a line has a fault; invalid, where somebody missing
+ * from the file has worked since the day they would have left; roster-unconfirmed, where half of the people or the last
+ * administrator would leave and nobody confirmed how many; nothing-to-do.
  */
 export async function importRoster(
   actor: Actor,
@@ -158,4 +160,10 @@ async function store(actor: Actor, site: Site, entries: readonly Placed[]): Prom
       values: { ...move, siteId: site.id },
     })),
   ]);
+  await endWithLeaving(
+    actor,
+    entries.flatMap(({ id, leaves, facts: { leftOn } }) =>
+      leaves && leftOn !== null ? [{ id, leftOn }] : [],
+    ),
+  );
 }

@@ -2,6 +2,7 @@ import { EmployeeNumber, Language, Name } from "../../shared/schemas/common";
 import type { RosterPerson } from "../../shared/schemas/roster";
 import { dateIssues } from "../lib/calendar";
 import { rows } from "../lib/db";
+import { issue, unprocessable } from "../lib/errors";
 import { type Actor, visible } from "../lib/policy";
 import type { Site } from "../models/site";
 import { workerPolicy } from "../policies";
@@ -116,7 +117,11 @@ export interface RosterDraft {
 
 const EMPLOYERS = ["own", "agency", "contractor"] as const;
 
-/** What a roster would do to the workers of a site. */
+/**
+ * What a roster would do to the workers of a site.
+ *
+ * @throws AppError invalid, where somebody missing from the file has worked since the day they would have left
+ */
 export async function draftRoster(
   actor: Actor,
   site: Site,
@@ -148,6 +153,7 @@ export async function draftRoster(
   }
   const missing =
     missingLeftOn === null ? [] : await presentWithout(site.id, missingLeftOn, numbers);
+  await checkMissing(missing, missingLeftOn);
   for (const one of missing)
     entries.push({
       known: one,
@@ -266,6 +272,21 @@ export async function draftRoster(
       cells.refuseUnlessRefused(line, field, code, params);
     }
   }
+}
+
+async function checkMissing(missing: readonly Known[], leftOn: string | null): Promise<void> {
+  if (leftOn === null) return;
+  const late = await daysAfterLeaving(missing.map(({ id }) => ({ id, leftOn })));
+  const [first] = missing
+    .flatMap(({ id, name }) => {
+      const lastOn = late.get(id);
+      return lastOn ? [{ name, lastOn }] : [];
+    })
+    .toSorted((a, b) => (a.lastOn < b.lastOn ? 1 : -1));
+  if (first)
+    throw unprocessable([
+      issue(["missingLeftOn"], "missing-worked-after", { ...first, others: late.size - 1 }),
+    ]);
 }
 
 function factsOf(before: Partial<Known>, put: Partial<RosterFacts>): RosterFacts {

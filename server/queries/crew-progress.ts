@@ -8,10 +8,14 @@ export interface DayProgress {
   absent: number;
 }
 
-/** SQL: the workers whom a crew has on a date, without those lent away or gone. `crew` and `date` are SQL, here as below. */
+/**
+ * SQL: the workers whom a crew has on a date, without those lent away or gone, or whose day stands with another shift.
+ * `crew` and `date` are SQL, here as below.
+ */
 const belonging = (crew: string, date: string): string =>
   `SELECT m.worker_id FROM crew_memberships m JOIN workers w ON w.id = m.worker_id
-   WHERE m.crew_id = ${crew} AND m.valid @> ${date} AND (w.left_on IS NULL OR w.left_on >= ${date}) AND NOT ${isLentOn("m", date)}`;
+   WHERE m.crew_id = ${crew} AND m.valid @> ${date} AND (w.left_on IS NULL OR w.left_on >= ${date}) AND NOT ${isLentOn("m", date)}
+     AND NOT EXISTS (SELECT 1 FROM shifts o WHERE o.worker_id = m.worker_id AND o.date = ${date} AND NOT o.is_void AND o.crew_id IS DISTINCT FROM ${crew})`;
 
 const entered = (crew: string, date: string): string =>
   `SELECT f.worker_id FROM shifts f WHERE f.crew_id = ${crew} AND f.date = ${date} AND NOT f.is_void`;

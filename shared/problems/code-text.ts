@@ -27,6 +27,10 @@ export function codeText(i18n: I18n, code: string, params: ProblemParams): strin
       return i18n.t(
         "Your access was for a time, and that is over. An administrator can give it anew.",
       );
+    case "access-taken":
+      return i18n.t(
+        "Your access was taken away. An administrator can give it anew; what you typed is kept.",
+      );
     case "no-grant":
       return i18n.t("Nobody has given you a role here yet. Ask your administrator.");
     case "csrf":

@@ -172,6 +172,15 @@ export function issueText(i18n: I18n, issue: FieldIssue): string {
         "A shift on {date} is recorded. Leaving comes on that day or later, or the shift is struck out first.",
         { date: formatDate(String(params.lastOn), localeOf(i18n)) },
       );
+    case "missing-worked-after":
+      return i18n.t(
+        "{name} {others, plural, =0 {is} one {and one more are} other {and # more are}} missing from the file, but worked after that day, last on {date}. Choose a later day, or put them into the file.",
+        {
+          name: params.name ?? "",
+          others: Number(params.others ?? 0),
+          date: formatDate(String(params.lastOn), localeOf(i18n)),
+        },
+      );
     case "after-leaving":
       return i18n.t("This worker had left before that.");
     case "snr-below-l":

@@ -9,6 +9,7 @@ export const PROBLEM_CODES = [
   "no-grant",
   "other-year",
   "access-ended",
+  "access-taken",
   "token-unknown",
   "token-over",
   "token-person-gone",

@@ -37,7 +37,7 @@ export const SessionView = z.object({
     .nullable(),
   /** Somebody the provider vouched for, but to whom nothing is granted. */
   pendingName: z.string().nullable(),
-  /** When access that was for a time ended. */
+  /** When access that was for a time ended, or was taken away while somebody was signed in. */
   endedAt: z.string().nullable(),
 });
 export type SessionView = z.infer<typeof SessionView>;

@@ -27,10 +27,13 @@ test("each state of the connection says what it is; only a lost session has a wa
     ["offline", "No connection."],
     ["unavailable", "The database can’t be reached."],
     ["session-expired", "You have been signed out."],
+    ["access-over", "You have no access any more."],
   ] as const) {
     act(() => connectionEvents.tell(state));
     expect(screen.getByRole("status")).toHaveTextContent(title);
-    expect(screen.queryAllByRole("link")).toHaveLength(state === "session-expired" ? 1 : 0);
+    expect(screen.queryAllByRole("link")).toHaveLength(
+      state === "session-expired" || state === "access-over" ? 1 : 0,
+    );
   }
   expect(screen.getByRole("link")).toHaveAttribute("href", wayBack);
 });

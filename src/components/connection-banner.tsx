@@ -25,5 +25,11 @@ export function ConnectionBanner() {
         {i18n.t("What you typed is kept on this device.")}
       </Banner>
     );
+  if (state === "access-over")
+    return (
+      <Banner title={i18n.t("You have no access any more.")} action={<SignInAgain />}>
+        {i18n.t("An administrator can give it anew. What you typed is kept on this device.")}
+      </Banner>
+    );
   return null;
 }

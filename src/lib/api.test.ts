@@ -87,6 +87,14 @@ test("a lost session is told to the page, but not where the question was who is 
   expect(states).toEqual(["ok", "session-expired"]);
 });
 
+test("that nothing is granted any more is told as such, not as a lost sign-in", async () => {
+  for (const code of ["access-taken", "access-ended"]) {
+    fetchStub.mockResolvedValueOnce(problem(401, { code, title: code }));
+    await api.get("/workers", { schema: text }).catch(() => null);
+  }
+  expect(states).toEqual(["ok", "access-over"]);
+});
+
 test("a lost connection is told, and told again when it is back", async () => {
   fetchStub.mockRejectedValueOnce(new TypeError("Failed to fetch"));
   await expect(api.get("/workers", { schema: text })).rejects.toMatchObject({

@@ -30,8 +30,15 @@ export class ApiError extends Error {
 export const isUnreached = (error: unknown): boolean =>
   error instanceof ApiError && (error.status === 0 || error.status >= 502);
 
-/** `unavailable`: the server answers, but can't do anything, as without its database. */
-export type ConnectionState = "ok" | "offline" | "unavailable" | "session-expired";
+/**
+ * `unavailable`: the server answers, but can't do anything, as without its database. `access-over`: signed in, but nothing
+ * is granted any more.
+ */
+export type ConnectionState = "ok" | "offline" | "unavailable" | "session-expired" | "access-over";
+
+/** What an answer of 401 says about whoever is signed in. */
+export const stateOf401 = (code: string): ConnectionState =>
+  code === "access-ended" || code === "access-taken" ? "access-over" : "session-expired";
 
 function createConnectionEvents() {
   let state: ConnectionState = "ok";
@@ -179,7 +186,7 @@ async function request<T>(method: string, path: string, options: ChangeOptions<T
     const problem = toProblem(response.status, response.statusText, body);
     const isSessionLost = response.status === 401 && options.asksWhoIsThere !== true;
     connectionEvents.tell(
-      isSessionLost ? "session-expired" : response.status >= 502 ? "unavailable" : "ok",
+      isSessionLost ? stateOf401(problem.code) : response.status >= 502 ? "unavailable" : "ok",
     );
     throw problem;
   }

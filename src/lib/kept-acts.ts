@@ -76,9 +76,11 @@ interface Reply {
   readonly steps?: readonly { readonly authorName: string | null; readonly text: string | null }[];
 }
 const anyReply: ReplySchema<Reply> = { parse: (value) => (value ?? {}) as Reply };
-const whoIsThere: ReplySchema<{ user: { id: string } | null }> = {
-  parse: (value) => value as { user: { id: string } | null },
-};
+interface WhoIsThere {
+  readonly user: { readonly id: string } | null;
+  readonly endedAt: string | null;
+}
+const whoIsThere: ReplySchema<WhoIsThere> = { parse: (value) => value as WhoIsThere };
 
 function standsNow(error: unknown): StandsNow | null {
   if (!(error instanceof ApiError) || error.status !== 412) return null;
@@ -254,8 +256,11 @@ function createKeptActs(kept: KeptList<KeptAct>, userId: string): KeptActs {
       isSending = true;
       const settled: Settled[] = [];
       try {
-        const { user } = await api.get("/session", { schema: whoIsThere, asksWhoIsThere: true });
-        if (!user) connectionEvents.tell("session-expired");
+        const { user, endedAt } = await api.get("/session", {
+          schema: whoIsThere,
+          asksWhoIsThere: true,
+        });
+        if (!user) connectionEvents.tell(endedAt ? "access-over" : "session-expired");
         // Somebody else may have signed in here in another window: what was done by one is not sent in another's name.
         if (user?.id !== userId) return [];
         const tried = new Set<string>();

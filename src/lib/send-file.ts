@@ -5,6 +5,7 @@ import {
   connectionEvents,
   newChangeKey,
   type ReplySchema,
+  stateOf401,
   toProblem,
 } from "./api";
 
@@ -28,15 +29,18 @@ export function sendFile<T>(
     for (const [name, value] of apiHeaders(idempotencyKey)) request.setRequestHeader(name, value);
     request.upload.onprogress = ({ loaded, total }) => onProgress?.((100 * loaded) / total);
     request.onload = () => {
-      connectionEvents.tell(request.status === 401 ? "session-expired" : "ok");
       let reply: unknown = null;
       try {
         reply = JSON.parse(request.responseText);
       } catch {
         // What is no JSON is a problem without a code.
       }
-      if (request.status >= 400) reject(toProblem(request.status, request.statusText, reply));
-      else {
+      if (request.status >= 400) {
+        const problem = toProblem(request.status, request.statusText, reply);
+        connectionEvents.tell(request.status === 401 ? stateOf401(problem.code) : "ok");
+        reject(problem);
+      } else {
+        connectionEvents.tell("ok");
         try {
           resolve(schema.parse(reply));
         } catch (error) {

@@ -94,6 +94,20 @@ test("somebody is marked as not in from today, and the keyboard stays where it w
   );
 });
 
+test("opening the other form loses nothing of what was typed into the one", async () => {
+  const user = userEvent.setup();
+  open(view());
+  await user.click(await screen.findByRole("button", { name: "Somebody is not in" }));
+  const absent = within(screen.getByRole("form", { name: "Not in" }));
+  await user.selectOptions(absent.getByLabelText("Who"), "Ada");
+  await user.click(screen.getByRole("button", { name: "Lend somebody" }));
+  const lend = within(screen.getByRole("form", { name: "Lend somebody" }));
+  expect(lend.getByLabelText("Who")).toHaveFocus();
+  await user.click(lend.getByRole("button", { name: "Cancel" }));
+  await waitFor(() => expect(screen.getByRole("button", { name: "Lend somebody" })).toHaveFocus());
+  expect(absent.getByLabelText("Who")).toHaveValue(ada);
+});
+
 test("an absence without an end is said so, and taken back by the revision that was seen", async () => {
   const user = userEvent.setup();
   open(view({ absences: [absence] }));

@@ -23,17 +23,18 @@ export function Component() {
   const locale = useLocale();
   const { crewId = "" } = useParams();
   const { data, error, refetch } = useQuery(attendanceQuery(crewId));
-  const [open, setOpen] = useState<"absence" | "loan" | null>(null);
+  /** Each for itself: opening the one loses nothing that was typed into the other. */
+  const [open, setOpen] = useState({ absence: false, loan: false });
   const [place, moveFocus] = useMoveFocus<HTMLDivElement>();
   const toWay = (form: "absence" | "loan") => () =>
-    moveFocus(`[data-open="${form}"]`, "form select");
+    moveFocus(`[data-open="${form}"]`, `[data-form="${form}"] select`);
   const close = (from: "absence" | "loan") => () => {
-    setOpen(null);
+    setOpen((before) => ({ ...before, [from]: false }));
     toWay(from)();
   };
   const show = (form: "absence" | "loan") => {
-    setOpen(form);
-    moveFocus("form select");
+    setOpen((before) => ({ ...before, [form]: true }));
+    moveFocus(`[data-form="${form}"] select`);
   };
   return (
     <>
@@ -69,8 +70,10 @@ export function Component() {
                 <p className="sheet-noticed">
                   {i18n.t("Whoever is not in is not expected on the sheet. Why is not asked here.")}
                 </p>
-                {open === "absence" ? (
-                  <AbsenceForm view={data} onDone={close("absence")} />
+                {open.absence ? (
+                  <div data-form="absence">
+                    <AbsenceForm view={data} onDone={close("absence")} />
+                  </div>
                 ) : (
                   <Button size="supervisor" data-open="absence" onClick={() => show("absence")}>
                     {i18n.t("Somebody is not in")}
@@ -96,11 +99,13 @@ export function Component() {
                 />
                 <p className="sheet-noticed">
                   {i18n.t(
-                    "On the days of a loan the other crew’s supervisor sees the person, and no other days.",
+                    "On the days of a loan the other crew’s supervisor sees the person, and no other days. To a crew of another site nobody is lent: an officer moves them there.",
                   )}
                 </p>
-                {open === "loan" ? (
-                  <LoanForm view={data} onDone={close("loan")} />
+                {open.loan ? (
+                  <div data-form="loan">
+                    <LoanForm view={data} onDone={close("loan")} />
+                  </div>
                 ) : (
                   <Button size="supervisor" data-open="loan" onClick={() => show("loan")}>
                     {i18n.t("Lend somebody")}

@@ -1,6 +1,7 @@
 import { useLingui } from "@lingui/react";
 import { useQueryClient } from "@tanstack/react-query";
 import { useEffect, useId, useRef, useState } from "react";
+import { issueText } from "../../shared/problems/issue-text";
 import { IMPORT_LIMIT_BYTES } from "../../shared/schemas/import";
 import type { RosterReport } from "../../shared/schemas/roster";
 import { Button } from "../components/button";
@@ -16,6 +17,7 @@ import {
   useRosterImport,
 } from "../features/imports/queries";
 import { RosterReportView, rosterCounts } from "../features/imports/roster-report";
+import { ApiError } from "../lib/api";
 import { paths } from "../paths";
 import { useSiteChoice } from "./site-choice";
 
@@ -89,6 +91,8 @@ export function Component() {
   const mayImport = report !== null && report.issuesCount === 0 && changes > 0;
   const asks = report?.asks ?? [];
   const failure = importing.error ?? dryRun.error;
+  const lateDay =
+    failure instanceof ApiError && failure.issues.find(({ path }) => path === "missingLeftOn");
   return (
     <>
       <PageBody
@@ -196,7 +200,10 @@ export function Component() {
             )}
           </Field>
           {isWhole && (
-            <Field label={i18n.t("Their last day")} error={undefined}>
+            <Field
+              label={i18n.t("Their last day")}
+              error={lateDay ? issueText(i18n, lateDay) : undefined}
+            >
               {(wires) => (
                 <DateInput
                   {...wires}
@@ -206,7 +213,7 @@ export function Component() {
               )}
             </Field>
           )}
-          {!(failure instanceof FileChanged) && <FormProblem error={failure} />}
+          {!(failure instanceof FileChanged) && !lateDay && <FormProblem error={failure} />}
           <div className="form-actions">
             <Button type="submit" kind={mayImport ? "plain" : "primary"} isBusy={dryRun.isPending}>
               {i18n.t("Look at the file")}
@@ -276,7 +283,11 @@ export function Component() {
           )}
         </div>
       </PageBody>
-      <Folio>{i18n.t("Whoever leaves keeps the record, and the sign-in to read it.")}</Folio>
+      <Folio>
+        {i18n.t(
+          "Whoever leaves keeps the record, and the sign-in to read it. Crew, loans, absences and protectors assigned end with the last day.",
+        )}
+      </Folio>
     </>
   );
 }

@@ -255,7 +255,15 @@ function WorkerForm({ worker }: { worker: WorkerView | null }) {
                   name="leftOn"
                   label={i18n.t("Left")}
                   isOptional
-                  note={i18n.t("The last day of work here.")}
+                  note={
+                    worker?.leftOn
+                      ? i18n.t(
+                          "The last day of work here. What ended with it, crew and protectors, does not come back with a later day.",
+                        )
+                      : i18n.t(
+                          "The last day of work here: crew, loans, absences and protectors assigned end with it.",
+                        )
+                  }
                 />
                 <GearField
                   form={form}

@@ -1,3 +1,4 @@
+import type { I18n } from "@lingui/core";
 import { useLingui } from "@lingui/react";
 import { useInfiniteQuery, useQuery } from "@tanstack/react-query";
 import { type ReactNode, useEffect, useMemo, useRef } from "react";
@@ -80,6 +81,8 @@ function WorkerSheet({ worker }: { worker: WorkerView }) {
   const timeZone = user.sites.find(({ id }) => id === worker.siteId)?.timeZone ?? "UTC";
   const today = localDate(new Date(), timeZone);
   const isOfficer = hasRole(user, "officer");
+  const hasLeft = worker.leftOn !== null && worker.leftOn < today;
+  const canGive = worker.can.assign && !hasLeft;
   const currentCrew = worker.crews.find(
     ({ fromDate, toDate }) => fromDate <= today && (toDate === null || toDate >= today),
   );
@@ -145,10 +148,12 @@ function WorkerSheet({ worker }: { worker: WorkerView }) {
           title={worker.name}
           lead={
             worker.leftOn
-              ? i18n.t("{number}, left {date}.", {
-                  number: worker.employeeNumber,
-                  date: formatDate(worker.leftOn, locale),
-                })
+              ? leavingWords(
+                  i18n,
+                  worker.employeeNumber,
+                  formatDate(worker.leftOn, locale),
+                  hasLeft,
+                )
               : [worker.employeeNumber, currentCrew?.name, worker.jobName]
                   .filter(Boolean)
                   .join(", ")
@@ -175,8 +180,8 @@ function WorkerSheet({ worker }: { worker: WorkerView }) {
           <Facts worker={worker} />
         </div>
         <div className="beside-slip">
-          <Protectors worker={worker} today={today} />
-          <Fits worker={worker} today={today} isOfficer={isOfficer} />
+          <Protectors worker={worker} today={today} canGive={canGive} />
+          <Fits worker={worker} today={today} isOfficer={isOfficer} canGive={canGive} />
           <OpenFindings worker={worker} today={today} />
           <Training worker={worker} today={today} />
           <History worker={worker} />
@@ -200,6 +205,11 @@ function WorkerSheet({ worker }: { worker: WorkerView }) {
     </>
   );
 }
+
+const leavingWords = (i18n: I18n, number: string, date: string, hasLeft: boolean): string =>
+  hasLeft
+    ? i18n.t("{number}, left {date}.", { number, date })
+    : i18n.t("{number}, leaves {date}.", { number, date });
 
 function Fact({ label, children }: { label: string; children: ReactNode }) {
   return (
@@ -273,7 +283,15 @@ function DayProtector({ day }: { day: DayFigures }) {
   return <ProtectorWord word={day.word} isOpen={isBoundReason(day.reason)} beneath={decidedBy} />;
 }
 
-function Protectors({ worker, today }: { worker: WorkerView; today: string }) {
+function Protectors({
+  worker,
+  today,
+  canGive,
+}: {
+  worker: WorkerView;
+  today: string;
+  canGive: boolean;
+}) {
   const { i18n } = useLingui();
   const { hash } = useLocation();
   const [search, setSearch] = useSearchParams();
@@ -310,10 +328,10 @@ function Protectors({ worker, today }: { worker: WorkerView; today: string }) {
         <AssignmentsTable
           rows={worker.assignments}
           today={today}
-          canAssign={worker.can.assign}
+          canAssign={canGive}
           onChange={(assignment) => open(assignedUse(assignment))}
         />
-        {worker.can.assign &&
+        {canGive &&
           (asked === null ? (
             <p className="after-table">
               <Button onClick={() => open()}>{i18n.t("Assign a protector")}</Button>{" "}
@@ -342,10 +360,12 @@ function Fits({
   worker,
   today,
   isOfficer,
+  canGive,
 }: {
   worker: WorkerView;
   today: string;
   isOfficer: boolean;
+  canGive: boolean;
 }) {
   const { i18n } = useLingui();
   const tests = useInfiniteQuery(fitQueries.tests({ workerId: worker.id }));
@@ -365,7 +385,7 @@ function Fits({
         }}
         empty={<Empty title={i18n.t("No fit of this worker is on record.")} />}
       />
-      {worker.can.assign && worker.leftOn === null && (
+      {canGive && (
         <p className="after-table">
           <ButtonLink to={paths.fittingOf(worker.id)}>{i18n.t("Fit and issue")}</ButtonLink>{" "}
           <ButtonLink to={paths.microphoneCheck(worker.id)}>

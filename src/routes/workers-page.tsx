@@ -12,11 +12,13 @@ import { hasRole, useUser } from "../features/session/session";
 import { workerQueries } from "../features/workers/queries";
 import { WorkersTable } from "../features/workers/workers-table";
 import { paths } from "../paths";
+import { useSiteChoice } from "./site-choice";
 import "../styles/findings.css";
 
 export function Component() {
   const { i18n } = useLingui();
   const user = useUser();
+  const { todayAt } = useSiteChoice();
   const [search, setSearch] = useSearchParams();
   const [typed, setTyped] = useState(search.get("search") ?? "");
   const asked = useDeferredValue(typed.trim());
@@ -114,6 +116,7 @@ export function Component() {
         <WorkersTable
           rows={rows}
           showsSite={user.sites.length > 1 && siteId === undefined}
+          todayAt={todayAt}
           state={list.isSuccess ? "ready" : list.isError ? "failed" : "loading"}
           error={list.error}
           onRetry={() => void list.refetch()}

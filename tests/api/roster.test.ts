@@ -124,7 +124,13 @@ describe("a roster", () => {
       [site.organizationId],
     );
     expect(new Set(events.map(({ action }) => action))).toEqual(
-      new Set(["create-worker", "change-worker", "add-crew-member", "import-roster"]),
+      new Set([
+        "create-worker",
+        "change-worker",
+        "add-crew-member",
+        "end-crew-membership",
+        "import-roster",
+      ]),
     );
   });
 
@@ -192,6 +198,31 @@ describe("a roster", () => {
     expect((await workersAt(site)).filter(({ left_on }) => left_on === today)).toHaveLength(3);
     const nothing = await send(client, order);
     expect(nothing.body.code).toBe("nothing-to-do");
+  });
+
+  test("who is missing and has worked since then stops it, in the dry run too; crews end with the last day", async () => {
+    const { site, moves, leaves, client } = await buildWorks();
+    await buildShift(moves, { date: daysFromToday(-1) });
+    const order = { siteId: site.id, lines: [lines[0]!, lines[3]!] };
+    const leaving = (missingLeftOn: string) => ({
+      ...order,
+      fields: { missingLeftOn, confirmedLeavers: "3" },
+    });
+    for (const isDryRun of [true, false]) {
+      const early = await send(client, { ...leaving(daysFromToday(-2)), isDryRun });
+      expect(early.status).toBe(422);
+      expect(early.body.issues).toMatchObject([
+        {
+          path: ["missingLeftOn"],
+          code: "missing-worked-after",
+          params: { name: "B. Old", lastOn: daysFromToday(-1), others: 0 },
+        },
+      ]);
+    }
+    expect((await workersAt(site)).filter(({ left_on }) => left_on !== null)).toEqual([]);
+    expect((await send(client, leaving(daysFromToday(-1)))).status).toBe(201);
+    for (const { id } of [moves, leaves])
+      expect(await membershipsOf(id)).toEqual([{ name: "Early", valid: `[2020-01-01,${today})` }]);
   });
 
   test("the last administrator among the leavers: it asks, and the sign-in stays", async () => {

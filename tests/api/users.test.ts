@@ -106,6 +106,24 @@ const change = (name: string, ...grants: { role: string; siteId?: string }[]) =>
 });
 
 describe("access", () => {
+  test("with the last role taken away it is said as such; with one of two, the other stays", async () => {
+    const organization = await buildOrganization();
+    const { client } = await administratorOf(organization.id);
+    const user = await buildUser({
+      organizationId: organization.id,
+      roles: ["officer", "auditor"],
+    });
+    const theirs = await signInAs(user);
+    const put = (revision: number, ...grants: { role: string }[]) =>
+      client.put(`/users/${user.id}`, change(user.name, ...grants), revision);
+    expect((await put(1, { role: "auditor" })).status).toBe(200);
+    expect((await theirs.get("/rule-sets")).status).toBe(200);
+    expect((await theirs.get("/session")).body.user.roles).toEqual(["auditor"]);
+    await select("UPDATE role_grants SET revoked_at = now() WHERE user_id = $1", [user.id]);
+    const refused = await theirs.get("/rule-sets");
+    expect([refused.status, refused.body.code]).toEqual([401, "access-taken"]);
+  });
+
   test("ends at the next request, and can be granted anew to the same e-mail and identity", async () => {
     const organization = await buildOrganization();
     const { client } = await administratorOf(organization.id);
@@ -125,7 +143,11 @@ describe("access", () => {
       revision: 2,
       can: { change: false, revoke: false },
     });
-    expect((await theirs.get("/rule-sets")).status).toBe(401);
+    const refused = await theirs.get("/rule-sets");
+    expect([refused.status, refused.body.code]).toEqual([401, "access-taken"]);
+    const { body: session } = await theirs.get("/session");
+    expect(session).toMatchObject({ user: null, pendingName: user.name });
+    expect(Date.now() - Date.parse(session.endedAt)).toBeLessThan(60_000);
     expect(
       (await client.send({ method: "post", path: `/users/${user.id}/revoke`, revision: 2 })).body
         .code,

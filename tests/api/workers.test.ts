@@ -466,6 +466,61 @@ describe("leaving", () => {
     ]);
     expect((await put("2026-03-03")).status).toBe(200);
   });
+
+  test("ends crew, loan, absence and assignments with it, and takes back what would only begin after it", async () => {
+    const site = await buildSite({ timeZone: "UTC" });
+    const [worker, stays] = [await buildWorker({ site }), await buildWorker({ site })];
+    const own = await buildCrew({ site, name: "Own", members: [worker, stays] });
+    const other = await buildCrew({ site, name: "Other" });
+    const client = await as(site.organizationId, "officer");
+    const organizationId = site.organizationId;
+    const { id: authorId } = await buildUser({ organizationId, roles: ["supervisor"] });
+    const day = daysFromToday;
+    const span = { organizationId, workerId: worker.id };
+    for (const valid of [`[${day(1)},${day(6)})`, `[${day(8)},${day(10)})`])
+      await insert("crew_memberships", { ...span, crewId: other.id, valid, isLoan: true });
+    for (const valid of [`[${day(-9)},${day(-7)})`, `[${day(3)},)`])
+      await insert("absence_spans", { ...span, crewId: own.id, valid, authorId });
+    await buildAssignment({ worker, fromDate: day(-20) });
+    const later = await buildTask({ site });
+    await buildAssignment({ worker, taskId: later.id, fromDate: day(7) });
+    await buildAssignment({ worker: stays, fromDate: day(-20) });
+    const body = { ...workerBody(site), leftOn: day(4) };
+
+    expect((await client.put(`/workers/${worker.id}`, body, 1)).status).toBe(200);
+
+    const spans = (table: string, person: { id: string }) =>
+      select<{ from: string; to: string | null }>(
+        `SELECT lower(valid)::text AS "from", (upper(valid) - 1)::text AS "to" FROM ${table} WHERE worker_id = $1
+         ${table === "absence_spans" ? "AND NOT is_struck" : ""} ORDER BY lower(valid)`,
+        [person.id],
+      );
+    expect((await spans("crew_memberships", worker)).map(({ to }) => to)).toEqual([day(4), day(4)]);
+    expect(await spans("absence_spans", worker)).toEqual([
+      { from: day(-9), to: day(-8) },
+      { from: day(3), to: day(4) },
+    ]);
+    expect(await spans("assignments", worker)).toEqual([
+      { from: day(-20), to: day(4) },
+      { from: day(7), to: day(7) },
+    ]);
+    expect((await spans("crew_memberships", stays)).map(({ to }) => to)).toEqual([null]);
+    expect((await spans("assignments", stays)).map(({ to }) => to)).toEqual([null]);
+    const events = await select<{ action: string }>(
+      "SELECT action FROM audit_events WHERE organization_id = $1 ORDER BY id",
+      [organizationId],
+    );
+    expect(events.map(({ action }) => action)).toEqual(
+      expect.arrayContaining([
+        "change-worker",
+        "end-crew-membership",
+        "end-loan",
+        "take-back-loan",
+        "end-absence",
+        "end-assignment",
+      ]),
+    );
+  });
 });
 
 describe("a sign-in code", () => {

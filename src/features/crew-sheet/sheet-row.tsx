@@ -108,7 +108,13 @@ function RowWord({
 }
 
 /** Whose employee somebody is, and between which crews they are lent. */
-function BesideName({ row: { worker, isLoan, lentBy, lentTo } }: { row: CrewSheetRow }) {
+function BesideName({
+  row: { worker, isLoan, lentBy, lentTo, figures },
+  part,
+}: {
+  row: CrewSheetRow;
+  part: PartName;
+}) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const words = [
@@ -118,6 +124,8 @@ function BesideName({ row: { worker, isLoan, lentBy, lentTo } }: { row: CrewShee
         ? i18n.t("on loan from {crew}", { crew: isolate(lentBy.crewName) })
         : i18n.t("on loan")),
     lentTo && lentWords(i18n, locale, lentTo),
+    // What they do here may be something else.
+    isLoan && part === "expected" && figures && i18n.t("expected by their own job"),
   ].filter(Boolean);
   return words.length > 0 && <span className="sheet-loan"> {words.join(", ")}</span>;
 }
@@ -217,7 +225,7 @@ export function SheetRow({
       <div className="sheet-name">
         <h3>
           {worker.name}
-          <BesideName row={row} />
+          <BesideName row={row} part={part} />
         </h3>
         <RowWord row={row} part={part} frame={frame} />
       </div>

@@ -25,7 +25,7 @@ import { gridLayout } from "./grid-layout";
 import type { GridFrame, MendAction } from "./grid-row";
 import type { Place } from "./paste";
 import { KeyLegend, RowPanel } from "./row-panel";
-import { isOnlyFilledIn, rowState } from "./row-state";
+import { isOnlyFilledIn, isWaiting, rowState } from "./row-state";
 import { waitingSentences } from "./row-words";
 import { countRows } from "./save";
 import { useDayEntry } from "./use-day-entry";
@@ -131,7 +131,7 @@ export function DayEntry({
         found.filter(({ row }) => row.base !== null && row.isTouched && !row.isAbsent).length,
       );
     } else if (outcome === "nothing") {
-      const first = states.findIndex((state) => state !== "saved");
+      const first = states.findIndex(isWaiting);
       setSaid(
         first === -1
           ? i18n.t("Everything is saved already.")

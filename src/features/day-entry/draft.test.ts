@@ -1,8 +1,19 @@
 import { describe, expect, test } from "vitest";
 import { cellOf } from "./cells";
 import { taskCell, wornCell } from "./columns";
-import { isBehind, isSettled, isSpoken, openDay, rebaseDraft, reduceDraft } from "./draft";
+import {
+  isBehind,
+  isSettled,
+  isSpoken,
+  openDay,
+  type RowDraft,
+  rebaseDraft,
+  reduceDraft,
+} from "./draft";
 import { createDraftStore, restoreDraft } from "./draft-store";
+import { createRowEvaluator } from "./evaluate-rows";
+import { isOnlyFilledIn, rowState } from "./row-state";
+import { countRows } from "./save";
 import { gridRow, savedShift, TASK, testDay, workerId } from "./test-day";
 
 const type = (number: number, minutes: number) => ({
@@ -50,6 +61,27 @@ describe("a row that nobody has entered", () => {
     }).rows[0]!;
     expect(isSpoken(confirmed, view.rows[0]!)).toBe(true);
   });
+});
+
+test("whose day stands with another shift is not filled in with a second one, and nothing waits for them", () => {
+  const elsewhere = gridRow(1, {
+    otherShifts: [
+      { shiftId: savedShift(9).shiftId, crewName: null, localStart: "06:00", lengthMin: 480 },
+    ],
+  });
+  const view = testDay([elsewhere, gridRow(2)]);
+  const draft = openDay(view);
+  const evaluateRow = createRowEvaluator(view);
+  const state = (row: RowDraft) => rowState(evaluateRow(row), elsewhere, false);
+  const [row] = draft.rows;
+  expect(row?.cells).toEqual({});
+  expect(state(row!)).toBe("elsewhere");
+  expect(countRows(draft, view)).toEqual({ settled: 1, waiting: 1 });
+  expect(isOnlyFilledIn(evaluateRow(row!), row!, elsewhere)).toBe(false);
+  // A second shift here is somebody's word, and then it waits like any other.
+  const copied = reduceDraft(draft, { type: "copy-last", rows: [elsewhere] }).rows[0]!;
+  expect(state(copied)).toBe("not-confirmed");
+  expect(state(reduceDraft(draft, type(1, 90)).rows[0]!)).toBe("has-fault");
 });
 
 test("an unknown wearing time stays unknown beside a known one", () => {

@@ -189,7 +189,8 @@ export function openRow(row: GridRow, view: DayGridView): RowDraft {
   const { saved, nominal, worker, readings } = row;
   let cells: Cells = {};
   if (saved) cells = savedCells(saved);
-  else {
+  // Whose day stands with another shift is not filled in with a second one.
+  else if (row.otherShifts.length === 0) {
     put(cells, "start", view.crew.usualStart, "filled");
     put(cells, "length", view.crew.usualLengthMin, "filled");
     for (const { taskId, durationMin } of nominal)
@@ -241,9 +242,18 @@ export const openDay = (view: DayGridView): DayDraft => ({
   addedTaskIds: [],
 });
 
-/** Stored on the server just as it stands here. */
+/** The day stands with another shift, and nobody has said anything of one with this crew. */
+export const isElsewhere = (row: RowDraft, gridRow: GridRow): boolean =>
+  gridRow.saved === null &&
+  gridRow.otherShifts.length > 0 &&
+  !row.isAbsent &&
+  !row.isTouched &&
+  row.cells.start === undefined;
+
+/** Stored on the server just as it stands here, or with nothing to store. */
 export const isSettled = (row: RowDraft, gridRow: GridRow): boolean =>
-  !row.isTouched && (row.isAbsent ? gridRow.isAbsent : row.base !== null && !gridRow.isAbsent);
+  isElsewhere(row, gridRow) ||
+  (!row.isTouched && (row.isAbsent ? gridRow.isAbsent : row.base !== null && !gridRow.isAbsent));
 
 /** Somebody typed in it, or looked and confirmed: only then is it sent. */
 export const isSpoken = (row: RowDraft, gridRow: GridRow): boolean =>

@@ -174,7 +174,7 @@ test("unknown wearing time is not taken for 100 %", () => {
 
 test("another shift of the day leaves the day to the server", () => {
   const found = evaluate(
-    {},
+    { start: "18:00", length: "120", [taskCell(TASK.runUp)]: "60" },
     {
       otherShifts: [
         { shiftId: savedShift(9).shiftId, crewName: null, localStart: "18:00", lengthMin: 120 },

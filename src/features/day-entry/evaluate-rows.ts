@@ -23,6 +23,7 @@ import { type CellFault, emptyCell, numberIn, unaccountedIn } from "./cells";
 import { type CellId, taskCell, wornCell } from "./columns";
 import {
   enteredReadings,
+  isElsewhere,
   type RowDraft,
   type RowIssue,
   type RunSetup,
@@ -200,6 +201,7 @@ export function createRowEvaluator(view: DayGridView): EvaluateRow {
       const problems = gridRow.saved ? [shiftSaved(gridRow.saved.shiftId)] : [];
       return nothing([...problems, ...refusals(row)]);
     }
+    if (isElsewhere(row, gridRow)) return nothing([]);
     const problems = problemsOf(row, gridRow, times, startOf, tasks);
     const { start, lengthMin } = times;
     if (problems.length > 0 || start === null || lengthMin === null) {

@@ -1,10 +1,12 @@
 import type { GridRow } from "../../../shared/schemas/shift";
-import { isSettled, isSpoken, type RowDraft } from "./draft";
+import { isElsewhere, isSettled, isSpoken, type RowDraft } from "./draft";
 import type { RowEvaluation } from "./evaluate-rows";
 
 /** Where a row stands between roster and server. */
 export type RowState =
   | "saved"
+  /** The day stands with another shift. */
+  | "elsewhere"
   | "ready"
   | "not-confirmed"
   | "does-not-add-up"
@@ -15,6 +17,7 @@ export type RowState =
 
 export function rowState(found: RowEvaluation, gridRow: GridRow, isBehind: boolean): RowState {
   const { row, problems, questions } = found;
+  if (isElsewhere(row, gridRow)) return "elsewhere";
   if (isSettled(row, gridRow)) return "saved";
   if (isBehind) return "behind";
   if (problems.some(({ kind }) => kind === "refused")) return "refused";
@@ -23,6 +26,11 @@ export function rowState(found: RowEvaluation, gridRow: GridRow, isBehind: boole
   if (!isSpoken(row, gridRow)) return "not-confirmed";
   return questions.length > 0 ? "asks" : "ready";
 }
+
+export type WaitingState = Exclude<RowState, "saved" | "elsewhere">;
+
+export const isWaiting = (state: RowState): state is WaitingState =>
+  state !== "saved" && state !== "elsewhere";
 
 /** Filled in from roster and nominal day, in order, and nobody has said anything about it yet. */
 export const isOnlyFilledIn = (found: RowEvaluation, row: RowDraft, gridRow: GridRow): boolean =>

@@ -1,10 +1,10 @@
 import type { I18n } from "@lingui/core";
-import type { RowState } from "./row-state";
+import type { RowState, WaitingState } from "./row-state";
 
 /** Rows of one kind that are named one by one; more are counted. */
 const NAMED_ROWS = 2;
 /** What needs somebody comes first. */
-const ORDER: readonly Exclude<RowState, "saved">[] = [
+const ORDER: readonly WaitingState[] = [
   "behind",
   "refused",
   "does-not-add-up",
@@ -23,7 +23,7 @@ export function waitingSentences(i18n: I18n, states: readonly RowState[]): strin
   });
 }
 
-function oneSentence(i18n: I18n, state: Exclude<RowState, "saved">, row: number): string {
+function oneSentence(i18n: I18n, state: WaitingState, row: number): string {
   switch (state) {
     case "does-not-add-up":
       return i18n.t("row {row} does not add up", { row });
@@ -42,7 +42,7 @@ function oneSentence(i18n: I18n, state: Exclude<RowState, "saved">, row: number)
   }
 }
 
-function manySentence(i18n: I18n, state: Exclude<RowState, "saved">, count: number): string {
+function manySentence(i18n: I18n, state: WaitingState, count: number): string {
   switch (state) {
     case "does-not-add-up":
       return i18n.t("{count} rows do not add up", { count });
@@ -65,5 +65,6 @@ function manySentence(i18n: I18n, state: Exclude<RowState, "saved">, count: numb
 export function rowStateWord(i18n: I18n, state: RowState, isTyping: boolean): string {
   if (isTyping) return i18n.t("typing");
   if (state === "saved") return i18n.t("saved");
+  if (state === "elsewhere") return i18n.t("elsewhere");
   return state === "ready" ? i18n.t("not saved") : i18n.t("waits");
 }

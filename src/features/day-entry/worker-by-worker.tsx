@@ -7,7 +7,7 @@ import { useLocale } from "../../lib/i18n";
 import { type GridFrame, type MendAction, previewFigures, stripProps } from "./grid-row";
 import { RowForm } from "./row-form";
 import { WorkedOut } from "./row-panel";
-import type { RowState } from "./row-state";
+import { isWaiting, type RowState } from "./row-state";
 import { rowStateWord } from "./row-words";
 import type { DayEntryState } from "./use-day-entry";
 import { problemWords, questionWords } from "./words";
@@ -116,7 +116,7 @@ export function WorkerByWorker({
         </>
       )}
       <div className="one-worker-actions">
-        {!row.isAbsent && problems.length === 0 && states[at] !== "saved" && (
+        {!row.isAbsent && problems.length === 0 && isWaiting(states[at] ?? "saved") && (
           <Button kind="primary" onClick={confirm}>
             {i18n.t("It was so")}
           </Button>

@@ -1,7 +1,7 @@
-import { queryOptions, useQuery } from "@tanstack/react-query";
+import { type QueryClient, queryOptions, useQuery } from "@tanstack/react-query";
 import type { Locale } from "../../../shared/i18n/index";
 import type { SessionRole, SessionUser, SessionView } from "../../../shared/schemas/session";
-import { api, isUnreached, noReply } from "../../lib/api";
+import { ApiError, api, connectionEvents, isUnreached, noReply } from "../../lib/api";
 import { rememberChoice } from "../../lib/i18n";
 import { forgetTyped } from "../../lib/keep-typed";
 import { forgetKept } from "../../lib/kept-list";
@@ -61,12 +61,35 @@ async function askWhoIsHere(signal: AbortSignal): Promise<SessionView> {
   }
 }
 
+const sessionKey = ["session"];
+
 export const sessionQuery = queryOptions({
-  queryKey: ["session"],
-  queryFn: ({ signal }) => askWhoIsHere(signal),
+  queryKey: sessionKey,
+  async queryFn({ signal, client }) {
+    const before = client.getQueryData<SessionView>(sessionKey);
+    const now = await askWhoIsHere(signal);
+    if (now.user || !before?.user || hasSignedOut) return now;
+    // A session that ends moves nobody: what is typed stays, and the top of the page says what happened.
+    connectionEvents.tell(now.endedAt ? "access-over" : "session-expired");
+    return before;
+  },
   staleTime: 60_000,
   networkMode: "always",
 });
+
+/** What is refused may have been taken away since: who may do what is asked anew. */
+export function watchRoles(client: QueryClient): void {
+  const askAnew = (error: unknown) => {
+    if (error instanceof ApiError && error.status === 403)
+      void client.invalidateQueries({ queryKey: sessionQuery.queryKey });
+  };
+  client.getQueryCache().subscribe((event) => {
+    if (event.type === "updated" && event.action.type === "error") askAnew(event.action.error);
+  });
+  client.getMutationCache().subscribe((event) => {
+    if (event.type === "updated" && event.action.type === "error") askAnew(event.action.error);
+  });
+}
 
 /** Whoever is signed in. Pages inside the signed-in part always have somebody. */
 export function useUser(): SessionUser {

@@ -141,6 +141,8 @@ export function actionWord(i18n: I18n, action: string): string {
       return i18n.t("Supervisor put in");
     case "end-crew-membership":
       return i18n.t("Membership ended");
+    case "take-back-crew-membership":
+      return i18n.t("Membership taken back");
     case "end-crew-supervision":
       return i18n.t("Supervision ended");
     case "add-protector-revision":

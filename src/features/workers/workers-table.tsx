@@ -18,11 +18,14 @@ import { paths } from "../../paths";
 export function WorkersTable({
   rows,
   showsSite,
+  todayAt,
   ...rest
-}: { rows: readonly WorkerRow[]; showsSite: boolean; empty: ReactNode } & Pick<
-  DataTableProps<WorkerRow>,
-  "state" | "error" | "onRetry" | "more"
->) {
+}: {
+  rows: readonly WorkerRow[];
+  showsSite: boolean;
+  todayAt: (siteId: string) => string;
+  empty: ReactNode;
+} & Pick<DataTableProps<WorkerRow>, "state" | "error" | "onRetry" | "more">) {
   const { i18n } = useLingui();
   const locale = useLocale();
   const days = useMemo(() => rows.map(({ lastDay }) => lastDay), [rows]);
@@ -60,7 +63,7 @@ export function WorkersTable({
     {
       id: "due",
       head: i18n.t("Last day"),
-      cell: ({ id, lastDay, leftOn }) => (
+      cell: ({ id, siteId, lastDay, leftOn }) => (
         <span className="two-lines">
           {lastDay ? (
             <TextLink to={paths.result(id, lastDay.date)}>
@@ -71,7 +74,9 @@ export function WorkersTable({
           )}
           {leftOn && (
             <span className="beneath">
-              {i18n.t("left {date}", { date: formatShortDate(leftOn, locale) })}
+              {leftOn < todayAt(siteId)
+                ? i18n.t("left {date}", { date: formatShortDate(leftOn, locale) })
+                : i18n.t("leaves {date}", { date: formatShortDate(leftOn, locale) })}
             </span>
           )}
         </span>
