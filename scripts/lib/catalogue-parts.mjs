@@ -38,6 +38,7 @@ const included = {
     ...features("session", "me"),
     "src/features/training/worker-training.tsx",
     ...pages(
+      "loading",
       "me-page",
       "sign-in",
       "signed-in",

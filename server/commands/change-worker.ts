@@ -9,7 +9,7 @@ import type { Site } from "../models/site";
 import type { Worker } from "../models/worker";
 import { daysAfterLeaving } from "../queries/days-after-leaving";
 import { checkWorker } from "./check-worker";
-import { endWithLeaving } from "./end-with-leaving";
+import { endCrewsElsewhere, endWithLeaving } from "./end-with-leaving";
 import { markDaysStale } from "./mark-days-stale";
 import { saveRequirementReason } from "./save-requirement-reason";
 
@@ -39,6 +39,7 @@ export async function changeWorker(
   });
   if (changes.leftOn && facts.leftOn !== null)
     await endWithLeaving(actor, [{ id: worker.id, leftOn: facts.leftOn }]);
+  if (changes.siteId) await endCrewsElsewhere(actor, [worker.id], todayAt(site.timeZone));
   if (changes.language) await carryLanguage(actor, worker.id, changes.language);
   if (changes.mustWear || changes.personalTargetDb) {
     await markDaysStale(actor.organizationId, {

@@ -1,3 +1,4 @@
+import { addDays } from "../../shared/time/zone";
 import { type AuditEvent, recordAuditMany } from "../lib/audit";
 import { execute, rows } from "../lib/db";
 import type { Actor } from "../lib/policy";
@@ -42,14 +43,32 @@ export async function endWithLeaving(actor: Actor, leavers: readonly Leaver[]): 
   await closeFitDues(actor.organizationId, leavers.length === 1 ? leavers[0]?.id : null);
 }
 
+/** Who goes to another site leaves the crews of the one before, with the day before the move as the last. */
+export async function endCrewsElsewhere(
+  actor: Actor,
+  workerIds: readonly string[],
+  movedOn: string,
+): Promise<void> {
+  if (workerIds.length === 0) return;
+  const leftOn = addDays(movedOn, -1);
+  const given = { leavers: JSON.stringify(workerIds.map((id) => ({ id, leftOn }))) };
+  await recordAuditMany(
+    actor,
+    await endMemberships(
+      given,
+      "m.crew_id IN (SELECT c.id FROM crews c JOIN workers w ON w.id = m.worker_id WHERE c.site_id <> w.site_id)",
+    ),
+  );
+}
+
 type Given = { leavers: string };
 
 const wouldBegin = ({ fromDate, leftOn }: Ended) => fromDate > leftOn;
 
-async function endMemberships(given: Given): Promise<AuditEvent[]> {
+async function endMemberships(given: Given, which = "TRUE"): Promise<AuditEvent[]> {
   const facts = `m.id, m.worker_id AS "workerId", m.crew_id AS "crewId", m.is_loan AS "isLoan", ${span("m")}`;
   const running = await rows<Ended>(
-    `SELECT ${facts} FROM crew_memberships m JOIN ${leaversAs} ON ${runsOn("m")} ORDER BY m.id FOR UPDATE OF m`,
+    `SELECT ${facts} FROM crew_memberships m JOIN ${leaversAs} ON ${runsOn("m")} WHERE ${which} ORDER BY m.id FOR UPDATE OF m`,
     given,
   );
   await execute("DELETE FROM crew_memberships WHERE id = ANY ($1::uuid[])", [

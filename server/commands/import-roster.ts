@@ -10,6 +10,7 @@ import { decodeText } from "../imports/decode-text";
 import { draftRoster, ROSTER_COLUMNS, type RosterEntry } from "../imports/draft-roster";
 import { readCsv } from "../imports/read-csv";
 import { recordAudit, recordAuditMany } from "../lib/audit";
+import { todayAt } from "../lib/calendar";
 import { changesBetween } from "../lib/changes";
 import { execute } from "../lib/db";
 import { AppError } from "../lib/errors";
@@ -17,7 +18,7 @@ import { leavesNobodyToAdminister } from "../lib/grants";
 import type { Actor } from "../lib/policy";
 import type { Site } from "../models/site";
 import { isOwnRunningOn } from "../queries/attendance";
-import { endWithLeaving } from "./end-with-leaving";
+import { endCrewsElsewhere, endWithLeaving } from "./end-with-leaving";
 
 const ISSUES_SHOWN = 500;
 const PEOPLE_SHOWN = 500;
@@ -160,6 +161,11 @@ async function store(actor: Actor, site: Site, entries: readonly Placed[]): Prom
       values: { ...move, siteId: site.id },
     })),
   ]);
+  await endCrewsElsewhere(
+    actor,
+    entries.flatMap(({ id, changes }) => (changes.includes("site") ? [id] : [])),
+    todayAt(site.timeZone),
+  );
   await endWithLeaving(
     actor,
     entries.flatMap(({ id, leaves, facts: { leftOn } }) =>

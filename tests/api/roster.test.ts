@@ -137,7 +137,8 @@ describe("a roster", () => {
   test("one bad line, and nothing is stored: each fault by line and column", async () => {
     const { site, leaves, client } = await buildWorks();
     const foreign = await buildSite({ organizationId: site.organizationId });
-    await buildWorker({ site: foreign, employeeNumber: "9001" });
+    const mover = await buildWorker({ site: foreign, employeeNumber: "9001" });
+    await buildCrew({ site: foreign, name: "Foreign", members: [mover] });
     const officerHere = await signInAs(
       await buildUser({ organizationId: site.organizationId, roles: ["officer"], siteId: site.id }),
     );
@@ -171,6 +172,9 @@ describe("a roster", () => {
     const moved = await send(client, { siteId: site.id, lines: ["9001,Now here,,,,,"] });
     expect(moved.body.people).toMatchObject([{ what: "changes", changes: ["name", "site"] }]);
     expect(await workersAt(site)).toHaveLength(5);
+    // The crew of the site before ends with the day before.
+    const [{ valid } = { valid: "" }] = await membershipsOf(mover.id);
+    expect(valid).toBe(`[2020-01-01,${today})`);
   });
 
   test("where more than half would leave it asks, with the count, and takes only that count for an answer", async () => {

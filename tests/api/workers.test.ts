@@ -523,6 +523,31 @@ describe("leaving", () => {
   });
 });
 
+describe("moving to another site", () => {
+  test("ends the crews of the one before, and nothing else", async () => {
+    const site = await buildSite({ timeZone: "UTC" });
+    const { organizationId } = site;
+    const there = await buildSite({ organizationId, timeZone: "UTC" });
+    const [worker, stays] = [await buildWorker({ site }), await buildWorker({ site })];
+    await buildCrew({ site, members: [worker, stays] });
+    await buildCrew({ site: there, members: [worker] });
+    await buildAssignment({ worker });
+    const client = await as(organizationId, "officer");
+    const moved = await client.put(`/workers/${worker.id}`, { ...workerBody(there) }, 1);
+    expect(moved.status).toBe(200);
+    const spans = await select<{ siteId: string; workerId: string; to: string | null }>(
+      `SELECT c.site_id AS "siteId", m.worker_id AS "workerId", (upper(m.valid) - 1)::text AS "to"
+       FROM crew_memberships m JOIN crews c ON c.id = m.crew_id WHERE m.organization_id = $1`,
+      [organizationId],
+    );
+    expect(spans).toHaveLength(3);
+    expect(spans.filter(({ to }) => to !== null)).toEqual([
+      { siteId: site.id, workerId: worker.id, to: daysFromToday(-1) },
+    ]);
+    expect(moved.body.assignments).toMatchObject([{ toDate: null }]);
+  });
+});
+
 describe("a sign-in code", () => {
   test("is made for who has left too: their own record stays theirs", async () => {
     const site = await buildSite();
